@@ -1,0 +1,88 @@
+/**
+ * How well a partition of points fits them: sums of squares, share explained, Calinski–Harabasz, Davies–Bouldin.
+ * In: point table, labels 0…k−1, k. All figures use the means of the labelled points, not the centres of a fit, so they
+ * hold for any zones, drawn by hand too. Cost: two passes over the points.
+ */
+
+import type { PointTable } from './kmeansPoints.ts';
+
+export interface Partition {
+  /** k × dimensions, row after row; NaN for a zone without points. */
+  readonly means: Float64Array;
+  readonly sizes: Float64Array;
+  /** Sum of squared distances to the own mean, per zone. */
+  readonly withinByZone: Float64Array;
+  readonly within: number;
+  /** Sum of squared distances to the mean of all points. */
+  readonly total: number;
+}
+
+/** Means, sizes and sums of squares of a labelled table. */
+export function describePartition(points: PointTable, labels: ArrayLike<number>, k: number): Partition {
+  const { values, count, dimensions } = points;
+  const means = new Float64Array(k * dimensions);
+  const sizes = new Float64Array(k);
+  const grand = new Float64Array(dimensions);
+  for (let point = 0; point < count; point++) {
+    const zone = labels[point]!;
+    sizes[zone] = sizes[zone]! + 1;
+    for (let f = 0; f < dimensions; f++) {
+      const value = values[point * dimensions + f]!;
+      means[zone * dimensions + f] = means[zone * dimensions + f]! + value;
+      grand[f] = grand[f]! + value / count;
+    }
+  }
+  for (let zone = 0; zone < k; zone++) for (let f = 0; f < dimensions; f++) means[zone * dimensions + f] = means[zone * dimensions + f]! / sizes[zone]!;
+  const withinByZone = new Float64Array(k);
+  let total = 0;
+  for (let point = 0; point < count; point++) {
+    const zone = labels[point]!;
+    for (let f = 0; f < dimensions; f++) {
+      const value = values[point * dimensions + f]!;
+      withinByZone[zone] = withinByZone[zone]! + (value - means[zone * dimensions + f]!) ** 2;
+      total += (value - grand[f]!) ** 2;
+    }
+  }
+  return { means, sizes, withinByZone, within: withinByZone.reduce((sum, part) => sum + part, 0), total };
+}
+
+/** Share of the total sum of squares between zones, 0…1 (R²; Dobermann et al. 2003 call 1 − R² the relative variance left). */
+export function varianceExplained({ within, total }: Partition): number {
+  return total > 0 ? 1 - within / total : 0;
+}
+
+/** [between/(k−1)] / [within/(n−k)] (Calinski & Harabasz 1974). NaN for one zone; Infinity when nothing is left within. */
+export function calinskiHarabasz({ within, total, sizes }: Partition): number {
+  const k = sizes.length;
+  const count = sizes.reduce((sum, size) => sum + size, 0);
+  return k < 2 ? NaN : (total - within) / (k - 1) / (within / (count - k));
+}
+
+/**
+ * Mean over zones of the worst (σi + σj) / dij, with σ the mean distance to the own mean and d the distance between
+ * means (Davies & Bouldin 1979). Smaller is better; NaN for one zone.
+ */
+export function daviesBouldin(points: PointTable, labels: ArrayLike<number>, partition: Partition): number {
+  const { values, count, dimensions } = points;
+  const { means, sizes } = partition;
+  const k = sizes.length;
+  if (k < 2) return NaN;
+  const spread = new Float64Array(k);
+  for (let point = 0; point < count; point++) {
+    const zone = labels[point]!;
+    spread[zone] = spread[zone]! + distanceBetween(values, point, means, zone, dimensions) / sizes[zone]!;
+  }
+  let sum = 0;
+  for (let a = 0; a < k; a++) {
+    let worst = 0;
+    for (let b = 0; b < k; b++) if (a !== b) worst = Math.max(worst, (spread[a]! + spread[b]!) / distanceBetween(means, a, means, b, dimensions));
+    sum += worst;
+  }
+  return sum / k;
+}
+
+function distanceBetween(a: Float64Array, rowA: number, b: Float64Array, rowB: number, dimensions: number): number {
+  let squared = 0;
+  for (let f = 0; f < dimensions; f++) squared += (a[rowA * dimensions + f]! - b[rowB * dimensions + f]!) ** 2;
+  return Math.sqrt(squared);
+}

@@ -1,0 +1,73 @@
+/**
+ * k-means on a flat table of points: the best of many seeded starts.
+ * In: points (standardised and weighted by the caller), k, a seeded random source. Out: centres, labels, inertia.
+ * With more points than `searchCount` the starts run on a random part of them and the best few are refined on all
+ * (Bradley & Fayyad 1998, "Refining initial points for k-means clustering"): 25 starts then cost little more than one.
+ */
+
+import { AnalysisError } from './analysisError.ts';
+import { exchangePoints } from './kmeansExchange.ts';
+import { refineCentres, type KMeansRun } from './kmeansLloyd.ts';
+import { sampleIndices, selectPoints, type PointTable } from './kmeansPoints.ts';
+import { seedCentres } from './kmeansSeeding.ts';
+import type { Random } from './random.ts';
+
+export interface KMeansOptions {
+  readonly k: number;
+  readonly random: Random;
+  /** Starts from different centres; a single one is often several percent off the best. */
+  readonly restarts?: number;
+  /** Points that the starts run on; the refinement always uses all. */
+  readonly searchCount?: number;
+  readonly maxIterations?: number;
+}
+
+/** How many different search results are finished by exchanges on all points. */
+const FINALISTS = 3;
+
+/**
+ * The run with the smallest sum of squared distances.
+ * fitKMeans(pointTable([[0], [1], [10], [11]]), { k: 2, random: seededRandom(1) }).inertia is 1.
+ */
+export function fitKMeans(points: PointTable, options: KMeansOptions): KMeansRun {
+  const { k, random, restarts = 25, searchCount = 2000, maxIterations = 300 } = options;
+  if (k < 1 || k > 255 || points.count < k) {
+    throw new AnalysisError('too-few-points', `${k} zones cannot be made of ${points.count} cells; ask for fewer zones or use smaller cells.`);
+  }
+  if (k === 1) return refineCentres(points, new Float64Array(points.dimensions), maxIterations);
+  const part = points.count > searchCount ? selectPoints(points, sampleIndices(points.count, searchCount, random)) : points;
+  const runs: KMeansRun[] = [];
+  for (let start = 0; start < restarts; start++) runs.push(refineCentres(part, seedCentres(part, k, random), maxIterations));
+  const ranked = differentRuns(runs.sort((a, b) => a.inertia - b.inertia));
+  return ranked
+    .slice(0, FINALISTS)
+    .map((run) => exchangePoints(points, part === points ? run : refineCentres(points, run.centres, maxIterations)))
+    .reduce((best, run) => (run.inertia < best.inertia ? run : best));
+}
+
+/** Runs that end at the same centres have the same inertia to the last digits; one of each is enough. */
+function differentRuns(ranked: readonly KMeansRun[]): KMeansRun[] {
+  return ranked.filter((run, i) => i === 0 || run.inertia > ranked[i - 1]!.inertia * (1 + 1e-9));
+}
+
+/** Nearest centre of every point: the zone of cells that were not in the sample the fit was made on. */
+export function assignToCentres(points: PointTable, centres: Float64Array): Uint8Array {
+  const { values, count, dimensions } = points;
+  const k = centres.length / dimensions;
+  const labels = new Uint8Array(count);
+  for (let point = 0; point < count; point++) {
+    let best = Infinity;
+    for (let zone = 0, c = 0; zone < k; zone++) {
+      let squared = 0;
+      for (let f = 0; f < dimensions; f++, c++) {
+        const difference = values[point * dimensions + f]! - centres[c]!;
+        squared += difference * difference;
+      }
+      if (squared < best) {
+        best = squared;
+        labels[point] = zone;
+      }
+    }
+  }
+  return labels;
+}

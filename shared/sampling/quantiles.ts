@@ -1,0 +1,128 @@
+import { chiSquareTails, studentTTails } from './distributions.ts';
+import { lnGamma } from './specialFunctions.ts';
+
+/**
+ * Quantiles of the normal, Student's t and chi-square to 1e-10 relative or better.
+ * Rounded table values (1.96, 2.26 …) change sample sizes by one, so they are never used.
+ * Checked against R 4.2.2 (qnorm, qt, qchisq).
+ */
+
+/** Wichura 1988, Applied Statistics 37:477, algorithm AS 241 (PPND16): rational approximations for three regions. */
+const CENTRE_ABOVE = [3.387132872796366608, 133.14166789178437745, 1971.5909503065514427, 13731.693765509461125, 45921.953931549871457, 67265.770927008700853, 33430.575583588128105, 2509.0809287301226727];
+const CENTRE_BELOW = [1, 42.313330701600911252, 687.1870074920579083, 5394.1960214247511077, 21213.794301586595867, 39307.89580009271061, 28729.085735721942674, 5226.495278852854561];
+const MIDDLE_ABOVE = [1.42343711074968357734, 4.6303378461565452959, 5.7694972214606914055, 3.64784832476320460504, 1.27045825245236838258, 0.24178072517745061177, 0.0227238449892691845833, 7.7454501427834140764e-4];
+const MIDDLE_BELOW = [1, 2.05319162663775882187, 1.6763848301838038494, 0.68976733498510000455, 0.14810397642748007459, 0.0151986665636164571966, 5.475938084995344946e-4, 1.05075007164441684324e-9];
+const FAR_ABOVE = [6.6579046435011037772, 5.4637849111641143699, 1.7848265399172913358, 0.29656057182850489123, 0.026532189526576123093, 0.0012426609473880784386, 2.71155556874348757815e-5, 2.01033439929228813265e-7];
+const FAR_BELOW = [1, 0.59983220655588793769, 0.13692988092273580531, 0.0148753612908506148525, 7.868691311456132591e-4, 1.8463183175100546818e-5, 1.4215117583164458887e-7, 2.04426310338993978564e-15];
+
+function polynomial(coefficients: readonly number[], x: number): number {
+  let value = 0;
+  for (let i = coefficients.length - 1; i >= 0; i--) value = value * x + coefficients[i]!;
+  return value;
+}
+
+/** The value with probability `p` below it in the standard normal, 0 < p < 1. Example: normalQuantile(0.975) = 1.959964. */
+export function normalQuantile(p: number): number {
+  const fromMiddle = p - 0.5;
+  if (Math.abs(fromMiddle) <= 0.425) {
+    const r = 0.180625 - fromMiddle * fromMiddle;
+    return (fromMiddle * polynomial(CENTRE_ABOVE, r)) / polynomial(CENTRE_BELOW, r);
+  }
+  const magnitude = normalUpperQuantile(fromMiddle < 0 ? p : 1 - p);
+  return fromMiddle < 0 ? -magnitude : magnitude;
+}
+
+/** The value with probability `tail` above it; keeps its digits for tails far below 1e-16. */
+export function normalUpperQuantile(tail: number): number {
+  if (tail >= 0.075) return -normalQuantile(tail);
+  const r = Math.sqrt(-Math.log(tail));
+  return r <= 5
+    ? polynomial(MIDDLE_ABOVE, r - 1.6) / polynomial(MIDDLE_BELOW, r - 1.6)
+    : polynomial(FAR_ABOVE, r - 5) / polynomial(FAR_BELOW, r - 5);
+}
+
+/** Two-sided normal factor for a confidence such as 0.95. */
+export function criticalZ(confidence: number): number {
+  return normalUpperQuantile((1 - confidence) / 2);
+}
+
+/** Two-sided t factor for a confidence such as 0.95; df need not be whole, Infinity gives the normal. */
+export function criticalT(confidence: number, df: number): number {
+  return studentTUpperQuantile((1 - confidence) / 2, df);
+}
+
+/** Above this the expansion around the normal is exact to 1e-12. */
+const NEARLY_NORMAL_DF = 1e5;
+
+/** The value with probability `tail` above it in Student's t. Newton on the logarithm of the tail, kept inside a bracket. */
+export function studentTUpperQuantile(tail: number, df: number): number {
+  if (tail > 0.5) return -studentTUpperQuantile(1 - tail, df);
+  if (tail === 0.5) return 0;
+  if (df === 1) return 1 / Math.tan(Math.PI * tail);
+  if (df === 2) return (1 - 2 * tail) / Math.sqrt(2 * tail * (1 - tail));
+  if (df >= NEARLY_NORMAL_DF) return cornishFisherT(normalUpperQuantile(tail), df);
+  const density = (t: number) => Math.exp(lnTConstant(df) - ((df + 1) / 2) * Math.log1p((t * t) / df));
+  return refine({ start: startT(tail, df), wanted: tail, tail: (t) => studentTTails(t, df).upper, density });
+}
+
+function lnTConstant(df: number): number {
+  return lnGamma((df + 1) / 2) - lnGamma(df / 2) - 0.5 * Math.log(df * Math.PI);
+}
+
+/** Expansion of t around z in powers of 1/df (Abramowitz & Stegun 1964, 26.7.5). */
+function cornishFisherT(z: number, df: number): number {
+  const z2 = z * z;
+  const first = (z * (z2 + 1)) / 4;
+  const second = (z * ((5 * z2 + 16) * z2 + 3)) / 96;
+  const third = (z * (((3 * z2 + 19) * z2 + 17) * z2 - 15)) / 384;
+  return z + (first + (second + third / df) / df) / df;
+}
+
+/** Near the middle the expansion around z; far out, or with few df, the leading power of the tail. */
+function startT(tail: number, df: number): number {
+  const z = normalUpperQuantile(tail);
+  if (df > 3 && z * z < df) return cornishFisherT(z, df);
+  const lnConstant = lnTConstant(df) + ((df - 1) / 2) * Math.log(df);
+  return Math.exp((lnConstant - Math.log(tail)) / df);
+}
+
+/** The value with probability `p` below it in chi-square with `df` degrees of freedom. */
+export function chiSquareQuantile(p: number, df: number): number {
+  const z = normalQuantile(p);
+  const third = 2 / (9 * df);
+  const wilsonHilferty = df * (1 - third + z * Math.sqrt(third)) ** 3;
+  const smallValue = 2 * Math.exp((Math.log(p * (df / 2)) + lnGamma(df / 2)) * (2 / df));
+  const start = wilsonHilferty > 0.2 * df ? wilsonHilferty : smallValue;
+  const density = (x: number) => Math.exp((df / 2 - 1) * Math.log(x / 2) - x / 2 - lnGamma(df / 2)) / 2;
+  if (p <= 0.5) return refine({ start, wanted: p, tail: (x) => chiSquareTails(x, df).lower, density, rising: true });
+  return refine({ start, wanted: 1 - p, tail: (x) => chiSquareTails(x, df).upper, density });
+}
+
+interface Refinement {
+  readonly start: number;
+  readonly wanted: number;
+  readonly tail: (x: number) => number;
+  readonly density: (x: number) => number;
+  /** Whether `tail` grows with x (a lower tail) or falls (an upper tail). */
+  readonly rising?: boolean;
+}
+
+/** Positive root of tail(x) = wanted: Newton in ln(tail), halving the bracket whenever a step leaves it. */
+function refine({ start, wanted, tail, density, rising = false }: Refinement): number {
+  let low = 0;
+  let high = Infinity;
+  let x = start > 0 && Number.isFinite(start) ? start : 1;
+  for (let step = 0; step < 200; step++) {
+    const value = tail(x);
+    const tooFar = rising ? value > wanted : value < wanted;
+    if (tooFar) high = x;
+    else low = x;
+    const slope = (rising ? density(x) : -density(x)) / value;
+    let next = x - Math.log(value / wanted) / slope;
+    // Newton doubles the digits with each step: after a step of 1e-9 the rest is rounding.
+    if (Math.abs(next - x) <= 1e-9 * x) return next;
+    if (!(next > low && next < high)) next = high === Infinity ? 2 * x : (low + high) / 2;
+    x = next;
+  }
+  return x;
+}

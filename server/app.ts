@@ -1,0 +1,115 @@
+import compression from 'compression';
+import connectPgSimple from 'connect-pg-simple';
+import express, { Router, type ErrorRequestHandler, type Express } from 'express';
+import session from 'express-session';
+import helmet from 'helmet';
+import { existsSync } from 'node:fs';
+import { join } from 'node:path';
+import { makeCsrf } from './access/csrf.ts';
+import { estateGuard } from './access/guard.ts';
+import { makePassport } from './access/signIn.ts';
+import type { Config } from './config.ts';
+import { Missing, problemOf } from './errors.ts';
+import { log } from './log.ts';
+import { describedApi } from './routes/openapi.ts';
+import { estateListRoutes, estateRoutes } from './routes/estates.ts';
+import { jobRoutes } from './routes/jobs.ts';
+import { peopleRoutes } from './routes/people.ts';
+import { recordRoutes } from './routes/records.ts';
+import { sessionRoutes } from './routes/session.ts';
+
+const weekMs = 7 * 86_400_000;
+
+/** The whole web application; opens no port. `isReady` tells whether the database answers. */
+export function makeApp(config: Config, parts: { isReady: () => Promise<boolean>; clientFolder: string | null }): Express {
+  const app = express();
+  app.set('trust proxy', config.trustProxy);
+  app.disable('x-powered-by');
+  app.use(securityHeaders(config));
+  app.use(compression({ filter: (request, response) => !request.path.endsWith('/events') && compression.filter(request, response) }));
+  app.get('/api/health', (_request, response) => void response.json({ ok: true }));
+  app.get('/api/ready', async (_request, response) => {
+    const ready = await parts.isReady();
+    response.status(ready ? 200 : 503).json({ ready });
+  });
+  app.use('/api', makeApi(config));
+  if (parts.clientFolder) serveClient(app, parts.clientFolder);
+  app.use(answerProblem);
+  return app;
+}
+
+function makeApi(config: Config): Router {
+  const api = Router();
+  const csrf = makeCsrf();
+  const passport = makePassport({ allowDemo: config.demo });
+  const Store = connectPgSimple(session);
+  api.use(express.json({ limit: '2mb' }));
+  api.use(
+    session({
+      store: new Store({ conString: config.databaseUrl, tableName: 'sessions', pruneSessionInterval: false }),
+      name: 'patchrow',
+      secret: config.sessionSecret,
+      resave: false,
+      saveUninitialized: false,
+      rolling: true,
+      cookie: { httpOnly: true, sameSite: 'lax', secure: config.production && config.trustProxy > 0 ? true : 'auto', maxAge: weekMs },
+    }),
+  );
+  api.use(passport.session());
+  api.use(csrf.protect);
+  api.get('/openapi.json', (_request, response) => void response.json(describedApi()));
+  api.use(sessionRoutes({ passport, csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
+  api.use(estateListRoutes());
+  api.use('/estates/:estateId', estateGuard, makeEstateApi(config));
+  api.use(() => {
+    throw new Missing();
+  });
+  return api;
+}
+
+function makeEstateApi(config: Config): Router {
+  const router = Router({ mergeParams: true });
+  const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
+  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes());
+  return router;
+}
+
+function securityHeaders(config: Config) {
+  return helmet({
+    contentSecurityPolicy: {
+      useDefaults: true,
+      directives: {
+        'default-src': ["'self'"],
+        'script-src': ["'self'"],
+        'worker-src': ["'self'", 'blob:'],
+        'img-src': ["'self'", 'data:', 'blob:'],
+        'connect-src': ["'self'", 'data:', 'blob:'],
+        // The component library writes its theme into style tags.
+        'style-src': ["'self'", "'unsafe-inline'"],
+        'font-src': ["'self'"],
+        'upgrade-insecure-requests': config.publicUrl.startsWith('https:') ? [] : null,
+      },
+    },
+    strictTransportSecurity: config.publicUrl.startsWith('https:'),
+  });
+}
+
+function serveClient(app: Express, folder: string): void {
+  app.use('/assets', express.static(join(folder, 'assets'), { immutable: true, maxAge: '1y', fallthrough: false }));
+  app.use(express.static(folder, { maxAge: 0, index: false }));
+  const page = join(folder, 'index.html');
+  if (existsSync(page)) app.get('/{*path}', (_request, response) => response.set('cache-control', 'no-cache').sendFile(page));
+}
+
+const answerProblem: ErrorRequestHandler = (error: unknown, request, response, next) => {
+  if (response.headersSent) {
+    next(error);
+    return;
+  }
+  const { status, code, title, detail, errors, extra } = problemOf(error);
+  if (status >= 500) log.error('request failed', error, { method: request.method, path: request.path });
+  response
+    .status(status)
+    .type('application/problem+json')
+    .send(JSON.stringify({ type: 'about:blank', title, status, detail, code, ...(errors ? { errors } : {}), ...extra }));
+};

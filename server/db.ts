@@ -1,0 +1,48 @@
+import knexPackage, { type Knex } from 'knex';
+import { knexSnakeCaseMappers, Model } from 'objection';
+import pg from 'pg';
+import * as m001 from '../migrations/001_estates.ts';
+import * as m002 from '../migrations/002_blocks_and_layers.ts';
+import * as m003 from '../migrations/003_zones.ts';
+import * as m004 from '../migrations/004_sampling.ts';
+import * as m005 from '../migrations/005_lots.ts';
+
+/** Named by hand so that the same names are recorded from source and from the built code. */
+const migrations: Record<string, Knex.Migration> = {
+  '001_estates': m001,
+  '002_blocks_and_layers': m002,
+  '003_zones': m003,
+  '004_sampling': m004,
+  '005_lots': m005,
+};
+
+// A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.
+pg.types.setTypeParser(pg.types.builtins.DATE, (value) => value);
+pg.types.setTypeParser(pg.types.builtins.INT8, (value) => Number(value));
+
+/** Opens the pool and binds the models to it. Column names are snake_case in the database, camelCase here. */
+export function openDatabase(databaseUrl: string, poolSize = 10): Knex {
+  const knex = knexPackage({
+    client: 'pg',
+    connection: { connectionString: databaseUrl, application_name: 'patchrow' },
+    pool: { min: 0, max: poolSize },
+    ...knexSnakeCaseMappers(),
+  });
+  Model.knex(knex);
+  return knex;
+}
+
+/** Brings the schema to the newest version. Safe to call from several processes: knex takes a lock. */
+export async function migrateToLatest(knex: Knex): Promise<string[]> {
+  await knex.raw('create extension if not exists postgis');
+  await knex.raw('create extension if not exists btree_gist');
+  const [, applied] = (await knex.migrate.latest({
+    migrationSource: {
+      getMigrations: () => Promise.resolve(Object.keys(migrations).sort()),
+      getMigrationName: (name: string) => name,
+      getMigration: (name: string) => Promise.resolve(migrations[name]!),
+    },
+    tableName: 'schema_versions',
+  })) as [number, string[]];
+  return applied;
+}

@@ -1,0 +1,36 @@
+import { Router } from 'express';
+import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
+import { accessOf, allow, signedIn } from '../access/guard.ts';
+import { changeEstate, createEstate } from '../services/estates.ts';
+import { describeSession } from '../services/sessions.ts';
+
+/** Estates a person belongs to, and a new one of their own. */
+export function estateListRoutes(): Router {
+  const router = Router();
+  router.get('/estates', async (request, response) => {
+    const { estates } = await describeSession(signedIn(request), { csrfToken: '', demo: false, today: today() });
+    response.json({ items: estates, total: estates.length });
+  });
+  router.post('/estates', async (request, response) => {
+    const id = await createEstate(signedIn(request), newEstate.parse(request.body), today());
+    response.status(201).json({ id });
+  });
+  return router;
+}
+
+/** The estate's own facts and settings. */
+export function estateRoutes(): Router {
+  const router = Router({ mergeParams: true });
+  router.get('/', allow('estate.see', 'read'), async (request, response) => {
+    const access = accessOf(request);
+    const { estates } = await describeSession(access.personId, { csrfToken: '', demo: false, today: today() });
+    response.json(estates.find((estate) => estate.id === access.estateId));
+  });
+  router.patch('/', allow('estate.settings'), async (request, response) => {
+    await changeEstate(accessOf(request), estateChange.parse(request.body));
+    response.status(204).end();
+  });
+  return router;
+}
+
+const today = () => new Date().toISOString().slice(0, 10);

@@ -1,0 +1,44 @@
+import { z } from 'zod';
+import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
+import { jobView } from '../../shared/contracts/jobs.ts';
+import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
+import { credentials, personChange, session } from '../../shared/contracts/session.ts';
+
+interface Operation {
+  method: 'get' | 'post' | 'put' | 'patch' | 'delete';
+  path: string;
+  summary: string;
+  body?: z.ZodType;
+  answer?: z.ZodType;
+}
+
+/** One row an operation that the outside may rely on; bodies and answers are the contracts themselves. */
+const operations: Operation[] = [
+  { method: 'get', path: '/api/session', summary: 'Who is signed in, in which estates, with which reach', answer: session },
+  { method: 'post', path: '/api/session', summary: 'Sign in', body: credentials, answer: session },
+  { method: 'delete', path: '/api/session', summary: 'Sign out' },
+  { method: 'patch', path: '/api/session/person', summary: 'Change own name, language, units, theme or password', body: personChange, answer: session },
+  { method: 'post', path: '/api/invitations/accept', summary: 'Join an estate with an invitation', body: invitationAnswer, answer: session },
+  { method: 'post', path: '/api/estates', summary: 'Make an estate', body: newEstate },
+  { method: 'patch', path: '/api/estates/{estateId}', summary: 'Change an estate', body: estateChange },
+  { method: 'post', path: '/api/estates/{estateId}/invitations', summary: 'Invite a person', body: newInvitation },
+  { method: 'put', path: '/api/estates/{estateId}/people/{personId}/roles', summary: 'Set the roles of a person', body: rolesChange },
+  { method: 'get', path: '/api/estates/{estateId}/jobs/{jobId}', summary: 'Progress of a job', answer: jobView },
+];
+
+/** The interface in OpenAPI 3.1, made from the contracts that the server checks with. */
+export function describedApi(): Record<string, unknown> {
+  const paths: Record<string, Record<string, unknown>> = {};
+  for (const { method, path, summary, body, answer } of operations) {
+    const json = (schema: z.ZodType, io: 'input' | 'output') => ({ content: { 'application/json': { schema: z.toJSONSchema(schema, { io, unrepresentable: 'any' }) } } });
+    paths[path] = {
+      ...paths[path],
+      [method]: {
+        summary,
+        ...(body ? { requestBody: { required: true, ...json(body, 'input') } } : {}),
+        responses: { '200': { description: 'Done', ...(answer ? json(answer, 'output') : {}) }, default: { description: 'Problem', content: { 'application/problem+json': {} } } },
+      },
+    };
+  }
+  return { openapi: '3.1.0', info: { title: 'Patchrow', version: '1' }, paths };
+}

@@ -1,0 +1,74 @@
+import { Router, type Request } from 'express';
+import { rateLimit } from 'express-rate-limit';
+import type { Passport } from 'passport';
+import { credentials, personChange } from '../../shared/contracts/session.ts';
+import { invitationAnswer } from '../../shared/contracts/people.ts';
+import { signedIn } from '../access/guard.ts';
+import { NotSignedIn, TooMuch } from '../errors.ts';
+import { acceptInvitation, changeSelf, readInvitation } from '../services/people.ts';
+import { describeSession } from '../services/sessions.ts';
+
+interface Options {
+  passport: InstanceType<typeof Passport>;
+  csrfToken: (request: Request) => string;
+  demo: boolean;
+  signInTries: number;
+}
+
+/** The door: who is signed in, signing in and out, and joining with an invitation. */
+export function sessionRoutes(options: Options): Router {
+  const router = Router();
+  const describe = (request: Request) =>
+    describeSession(request.user?.id ?? null, { csrfToken: options.csrfToken(request), demo: options.demo, today: new Date().toISOString().slice(0, 10) });
+  const tries = rateLimit({
+    windowMs: 15 * 60_000,
+    limit: options.signInTries,
+    skipSuccessfulRequests: true,
+    standardHeaders: 'draft-8',
+    legacyHeaders: false,
+    handler: () => {
+      throw new TooMuch('tooManyTries', 'Too many failed sign-ins from here. Wait a quarter of an hour, then try again.');
+    },
+  });
+
+  router.get('/session', async (request, response) => {
+    response.set('cache-control', 'no-store').json(await describe(request));
+  });
+
+  router.post('/session', tries, async (request, response, next) => {
+    credentials.parse(request.body);
+    const user = await new Promise<Express.User | false>((resolve, reject) => {
+      const handler = options.passport.authenticate('local', (error: unknown, found: Express.User | false) => (error ? reject(error as Error) : resolve(found))) as (...args: unknown[]) => void;
+      handler(request, response, next);
+    });
+    if (!user) throw new NotSignedIn('E-mail and password do not fit together. Check both, or ask for a new password.');
+    await signIn(request, user);
+    response.json(await describe(request));
+  });
+
+  router.delete('/session', async (request, response) => {
+    await new Promise<void>((resolve, reject) => request.logout((error: unknown) => (error ? reject(error as Error) : resolve())));
+    response.status(204).end();
+  });
+
+  router.patch('/session/person', async (request, response) => {
+    await changeSelf(signedIn(request), personChange.parse(request.body));
+    response.json(await describe(request));
+  });
+
+  router.get('/invitations/:token', tries, async (request, response) => {
+    response.json(await readInvitation(String(request.params.token), new Date()));
+  });
+
+  router.post('/invitations/accept', tries, async (request, response) => {
+    const { personId } = await acceptInvitation(invitationAnswer.parse(request.body), new Date());
+    await signIn(request, { id: personId });
+    response.status(201).json(await describe(request));
+  });
+
+  return router;
+}
+
+function signIn(request: Request, user: Express.User): Promise<void> {
+  return new Promise((resolve, reject) => request.logIn(user, (error: unknown) => (error ? reject(error as Error) : resolve())));
+}

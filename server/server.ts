@@ -1,0 +1,62 @@
+import { existsSync } from 'node:fs';
+import { createServer, type Server } from 'node:http';
+import { resolve } from 'node:path';
+import { fileURLToPath } from 'node:url';
+import { makeApp } from './app.ts';
+import { readConfig } from './config.ts';
+import { openDatabase } from './db.ts';
+import { prepareQueue } from './jobs/queue.ts';
+import { startRunner } from './jobs/runner.ts';
+import { log, setLogLevel } from './log.ts';
+import { makeTransport } from './mail/transport.ts';
+import { closeComputePool, openComputePool } from './workers/computePool.ts';
+
+const mailEveryMs = 5000;
+
+async function main(): Promise<void> {
+  const config = readConfig();
+  setLogLevel(config.logLevel);
+  const knex = openDatabase(config.databaseUrl);
+  await prepareQueue(config.databaseUrl);
+  openComputePool(config.computeThreads);
+  const runner = await startRunner(config.databaseUrl);
+  const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });
+  const mailTimer = setInterval(() => void mail.flush().catch((error: unknown) => log.error('mail', error)), mailEveryMs);
+  const isReady = () => knex.raw('select 1').then(() => true, () => false);
+  const server = createServer(makeApp(config, { isReady, clientFolder: clientFolder() }));
+  await listen(server, config.port, config.host);
+  log.info('listening', { address: `http://${config.host}:${portOf(server)}` });
+
+  const stop = async () => {
+    clearInterval(mailTimer);
+    server.closeAllConnections();
+    server.close();
+    await runner.stop().catch(() => undefined);
+    await closeComputePool();
+    mail.close();
+    await knex.destroy();
+    process.exit(0);
+  };
+  process.once('SIGINT', () => void stop());
+  process.once('SIGTERM', () => void stop());
+}
+
+/** Built: dist/server/server.js beside dist/client. From source there is no built client, vite serves it. */
+function clientFolder(): string | null {
+  const folder = resolve(fileURLToPath(new URL('../client', import.meta.url)));
+  return existsSync(folder) ? folder : null;
+}
+
+function listen(server: Server, port: number, host: string): Promise<void> {
+  return new Promise((done, fail) => server.once('error', fail).listen(port, host, done));
+}
+
+function portOf(server: Server): number {
+  const address = server.address();
+  return typeof address === 'object' && address !== null ? address.port : 0;
+}
+
+main().catch((error: unknown) => {
+  log.error('start failed', error);
+  process.exit(1);
+});

@@ -1,0 +1,73 @@
+import type { z } from 'zod';
+import { estateSettings, type NewEstate, type estateChange } from '../../shared/contracts/estate.ts';
+import { measures } from '../../shared/catalog/measures.ts';
+import type { Access } from '../access/access.ts';
+import { writeAudit } from '../models/AuditEntry.ts';
+import { Estate } from '../models/Estate.ts';
+import { fromGeoJson } from '../models/geometry.ts';
+import { MeasureRecord } from '../models/MeasureRecord.ts';
+import { Membership } from '../models/Membership.ts';
+import { Scenario } from '../models/Scenario.ts';
+import { Season } from '../models/Season.ts';
+
+/** Makes an estate with its owner, its first season, the starting measures and the live set of lots. Returns its id. */
+export async function createEstate(personId: string, input: NewEstate, today: string): Promise<string> {
+  return Estate.transaction(async (trx) => {
+    const { marker, ...facts } = input;
+    const estate = await Estate.query(trx).insert({ ...facts, settings: estateSettings.parse({}), ...(marker ? { marker: fromGeoJson(marker) as never } : {}) });
+    await Membership.query(trx).insert({ estateId: estate.id, personId, role: 'owner' });
+    const season = await Season.query(trx).insert({ estateId: estate.id, ...seasonAround(today, input.seasonStartMonth) });
+    await Scenario.query(trx).insert({ estateId: estate.id, seasonId: season.id, name: season.name, isLive: true, createdBy: personId });
+    await MeasureRecord.query(trx).insert(startingMeasures(estate.id));
+    await writeAudit(trx, { estateId: estate.id, personId }, { action: 'estate.create', subjectType: 'estate', subjectId: estate.id, subjectName: input.name });
+    return estate.id;
+  });
+}
+
+/** Rows of the catalogue as an estate's own measures, to be changed from there. */
+export function startingMeasures(estateId: string) {
+  return measures.map((measure) => ({
+    estateId,
+    code: measure.code,
+    unit: measure.unit,
+    decimals: measure.decimals,
+    minimum: measure.min,
+    maximum: measure.max,
+    marginKind: measure.marginKind,
+    margin: measure.margin,
+    sampledUnit: measure.sampledUnit,
+    spreadKind: measure.defaultSpread.kind,
+    spreadValue: measure.defaultSpread.value,
+    spreadSource: measure.defaultSpread.source,
+    typicalMean: measure.typicalMean,
+    secondsPerSample: measure.secondsPerSample,
+    weighting: measure.weighting,
+    skewed: measure.skewed,
+    measuredIn: measure.where,
+  }));
+}
+
+/** Twelve months from the season's first month, named by the year or years they touch. */
+export function seasonAround(today: string, startMonth: number): { name: string; startsOn: string; endsOn: string } {
+  const year = Number(today.slice(0, 4));
+  const month = Number(today.slice(5, 7));
+  const startYear = month >= startMonth ? year : year - 1;
+  const startsOn = `${startYear}-${String(startMonth).padStart(2, '0')}-01`;
+  const last = new Date(Date.UTC(startYear + 1, startMonth - 1, 0));
+  const endsOn = last.toISOString().slice(0, 10);
+  // A season that begins in the last quarter belongs to the year of its vintage; one across mid-year names both.
+  const name = startMonth === 1 ? String(startYear) : startMonth >= 10 ? String(startYear + 1) : `${startYear}/${String(startYear + 1).slice(2)}`;
+  return { name, startsOn, endsOn };
+}
+
+export async function changeEstate(access: Access, change: z.infer<typeof estateChange>): Promise<void> {
+  await Estate.transaction(async (trx) => {
+    const before = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+    const { marker, settings, ...facts } = change;
+    const merged = settings ? estateSettings.parse({ ...before.settings, ...settings }) : undefined;
+    await Estate.query(trx)
+      .findById(access.estateId)
+      .patch({ ...facts, ...(merged ? { settings: merged } : {}), ...(marker ? { marker: fromGeoJson(marker) as never } : {}) });
+    await writeAudit(trx, access, { action: 'estate.settings', subjectType: 'estate', subjectId: access.estateId, subjectName: before.name, before: { name: before.name, settings: before.settings }, after: change });
+  });
+}

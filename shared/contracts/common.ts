@@ -1,0 +1,22 @@
+import { z } from 'zod';
+
+/** Shapes that several contracts use. */
+export const id = z.uuid();
+export const isoDate = z.iso.date();
+export const isoTime = z.iso.datetime({ offset: true });
+export const languages = ['en', 'es', 'fr', 'it', 'pt'] as const;
+export const language = z.enum(languages);
+export const units = z.enum(['metric', 'us']);
+export const themes = z.enum(['system', 'light', 'dark', 'outdoor']);
+
+/** Name typed by a person: trimmed, not empty, one line. */
+export const shortName = z.string().trim().min(1, 'Give a name.').max(80, 'At most 80 characters.').regex(/^[^\r\n\t]*$/, 'One line only.');
+
+const position = z.tuple([z.number().min(-180).max(180), z.number().min(-90).max(90)]).rest(z.number());
+const ring = z.array(position).min(4, 'A ring needs at least four positions.');
+
+export const pointGeometry = z.object({ type: z.literal('Point'), coordinates: position });
+export const polygonGeometry = z.object({ type: z.literal('Polygon'), coordinates: z.array(ring).min(1) });
+export const multiPolygonGeometry = z.object({ type: z.literal('MultiPolygon'), coordinates: z.array(z.array(ring).min(1)).min(1) });
+export const areaGeometry = z.discriminatedUnion('type', [polygonGeometry, multiPolygonGeometry]);
+export const lineGeometry = z.object({ type: z.literal('LineString'), coordinates: z.array(position).min(2) });

@@ -1,0 +1,35 @@
+import { z } from 'zod';
+import { id, isoDate, language, pointGeometry, shortName, units } from './common.ts';
+
+/** Numbers an estate sets for itself; each has a stated starting value. */
+export const estateSettings = z.object({
+  /** More samples than this in one zone and visit count as impractical. */
+  impracticalSamples: z.number().int().min(5).max(1000).default(60),
+  /** Hours one person can sample in a day. */
+  dayHours: z.number().min(1).max(14).default(8),
+  costPerHour: z.number().min(0).default(25),
+  currency: z.string().max(8).default('EUR'),
+  /** Least vines sampled in a zone. */
+  floorVines: z.number().int().min(2).max(50).default(5),
+  /** Crew see results only where the manager switches it on. */
+  crewSeeResults: z.boolean().default(false),
+  emergencyNumber: z.string().max(40).default('112'),
+  meetingPoint: z.string().max(200).default(''),
+});
+export type EstateSettings = z.infer<typeof estateSettings>;
+
+export const newEstate = z.object({
+  name: shortName,
+  country: z.string().trim().max(60).default(''),
+  timeZone: z.string().trim().min(1).max(60).default('UTC'),
+  units: units.default('metric'),
+  languages: z.array(language).min(1).default(['en']),
+  seasonStartMonth: z.number().int().min(1).max(12).default(12),
+  marker: pointGeometry.nullable().default(null),
+});
+export type NewEstate = z.infer<typeof newEstate>;
+
+export const estateChange = newEstate.partial().extend({ settings: estateSettings.partial().optional() });
+
+export const seasonView = z.object({ id, name: z.string(), startsOn: isoDate, endsOn: isoDate, phases: z.record(z.string(), z.tuple([isoDate, isoDate])), closed: z.boolean() });
+export type SeasonView = z.infer<typeof seasonView>;

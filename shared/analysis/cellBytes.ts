@@ -35,7 +35,7 @@ export function decodeFloatCells(bytes: Uint8Array): Float32Array {
 /** Labels from bytes; throws AnalysisError when the bytes are not exactly such an array. */
 export function decodeLabels(bytes: Uint8Array): Uint8Array {
   checked(bytes, UINT8, 1);
-  return bytes.slice(HEADER_BYTES);
+  return new Uint8Array(bytes.subarray(HEADER_BYTES));
 }
 
 function checked(bytes: Uint8Array, type: number, bytesPerCell: number): { view: DataView; count: number } {

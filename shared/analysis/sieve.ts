@@ -1,0 +1,59 @@
+/**
+ * Removes patches that are too small to work with. In: labels, 0 outside. Out: labels; no cell becomes or leaves 0.
+ * Cost: linear in the cells, plus the merging of small patches.
+ */
+import type { Labels } from './grid.ts';
+import { PatchMerger } from './sieveMerger.ts';
+import { eachContact, findPatches, type Connectivity } from './sievePatches.ts';
+
+export interface SieveOptions {
+  /** Patches with fewer cells than this are removed. */
+  readonly minCells: number;
+  readonly connectivity?: Connectivity;
+}
+
+/** Cells that an area needs, rounded up: 0.05 ha at 2 m are 125 cells. */
+export function cellsForArea(areaHa: number, cellSizeM: number): number {
+  return Math.ceil((areaHa * 10_000) / (cellSizeM * cellSizeM) - 1e-9);
+}
+
+/**
+ * A small patch takes the label of the neighbour patch with the longest shared border, smallest patches first, until none
+ * is left or a patch has no neighbour. Ties go to the larger neighbour, then to the lower label. Own rule for zones: the
+ * longest border moves the least line on the ground.
+ */
+export function sieveByBorder(labels: Labels, cols: number, { minCells, connectivity = 4 }: SieveOptions): Labels {
+  const patches = findPatches(labels, cols, connectivity);
+  if (!patches.sizes.some((size) => size < minCells)) return new Uint8Array(labels);
+  const merger = new PatchMerger(patches, minCells);
+  eachContact(patches, cols, connectivity, (a, b, isEdge) => merger.addBorder(a, b, isEdge ? 1 : 0));
+  const labelOf = merger.mergeSmall();
+  return labels.map((label, cell) => (label === 0 ? 0 : labelOf[patches.patchOf[cell]!]!));
+}
+
+/**
+ * The sieve of the geographic libraries: a small patch takes the label of its largest neighbour patch; if that is small
+ * too, the largest neighbour of that one, and so on. Sizes are those before any merging. Ties go to the patch met first.
+ */
+export function sieveByLargestNeighbour(labels: Labels, cols: number, { minCells, connectivity = 4 }: SieveOptions): Labels {
+  const patches = findPatches(labels, cols, connectivity);
+  const { sizes } = patches;
+  const largest = new Int32Array(sizes.length).fill(-1);
+  const offer = (patch: number, other: number) => {
+    if (largest[patch] === -1 || sizes[other]! > sizes[largest[patch]!]!) largest[patch] = other;
+  };
+  eachContact(patches, cols, connectivity, (a, b) => {
+    offer(a, b);
+    offer(b, a);
+  });
+  const labelOf = patches.labels.map((own, patch) => {
+    const visited = new Set<number>();
+    let at = patch;
+    while (at !== -1 && sizes[at]! < minCells && !visited.has(at)) {
+      visited.add(at);
+      at = largest[at]!;
+    }
+    return at === -1 || sizes[at]! < minCells ? own : patches.labels[at]!;
+  });
+  return labels.map((label, cell) => (label === 0 ? 0 : labelOf[patches.patchOf[cell]!]!));
+}

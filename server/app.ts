@@ -5,6 +5,7 @@ import session from 'express-session';
 import helmet from 'helmet';
 import { existsSync } from 'node:fs';
 import { join } from 'node:path';
+import type pg from 'pg';
 import { makeCsrf } from './access/csrf.ts';
 import { estateGuard } from './access/guard.ts';
 import { makePassport } from './access/signIn.ts';
@@ -20,8 +21,16 @@ import { sessionRoutes } from './routes/session.ts';
 
 const weekMs = 7 * 86_400_000;
 
+export interface AppParts {
+  isReady: () => Promise<boolean>;
+  /** Connections of the session store; whoever opens the pool closes it. */
+  sessionPool: pg.Pool;
+  /** Folder of the built client, or null when another server serves it. */
+  clientFolder: string | null;
+}
+
 /** The whole web application; opens no port. `isReady` tells whether the database answers. */
-export function makeApp(config: Config, parts: { isReady: () => Promise<boolean>; clientFolder: string | null }): Express {
+export function makeApp(config: Config, parts: AppParts): Express {
   const app = express();
   app.set('trust proxy', config.trustProxy);
   app.disable('x-powered-by');
@@ -32,13 +41,13 @@ export function makeApp(config: Config, parts: { isReady: () => Promise<boolean>
     const ready = await parts.isReady();
     response.status(ready ? 200 : 503).json({ ready });
   });
-  app.use('/api', makeApi(config));
+  app.use('/api', makeApi(config, parts.sessionPool));
   if (parts.clientFolder) serveClient(app, parts.clientFolder);
   app.use(answerProblem);
   return app;
 }
 
-function makeApi(config: Config): Router {
+function makeApi(config: Config, sessionPool: pg.Pool): Router {
   const api = Router();
   const csrf = makeCsrf();
   const passport = makePassport({ allowDemo: config.demo });
@@ -46,7 +55,7 @@ function makeApi(config: Config): Router {
   api.use(express.json({ limit: '2mb' }));
   api.use(
     session({
-      store: new Store({ conString: config.databaseUrl, tableName: 'sessions', pruneSessionInterval: false }),
+      store: new Store({ pool: sessionPool, tableName: 'sessions', pruneSessionInterval: false }),
       name: 'patchrow',
       secret: config.sessionSecret,
       resave: false,

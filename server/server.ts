@@ -2,6 +2,7 @@ import { existsSync } from 'node:fs';
 import { createServer, type Server } from 'node:http';
 import { resolve } from 'node:path';
 import { fileURLToPath } from 'node:url';
+import pg from 'pg';
 import { makeApp } from './app.ts';
 import { readConfig } from './config.ts';
 import { openDatabase } from './db.ts';
@@ -22,8 +23,9 @@ async function main(): Promise<void> {
   const runner = await startRunner(config.databaseUrl);
   const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });
   const mailTimer = setInterval(() => void mail.flush().catch((error: unknown) => log.error('mail', error)), mailEveryMs);
+  const sessionPool = new pg.Pool({ connectionString: config.databaseUrl, max: 4 });
   const isReady = () => knex.raw('select 1').then(() => true, () => false);
-  const server = createServer(makeApp(config, { isReady, clientFolder: clientFolder() }));
+  const server = createServer(makeApp(config, { isReady, sessionPool, clientFolder: clientFolder() }));
   await listen(server, config.port, config.host);
   log.info('listening', { address: `http://${config.host}:${portOf(server)}` });
 
@@ -34,6 +36,7 @@ async function main(): Promise<void> {
     await runner.stop().catch(() => undefined);
     await closeComputePool();
     mail.close();
+    await sessionPool.end();
     await knex.destroy();
     process.exit(0);
   };

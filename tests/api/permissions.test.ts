@@ -1,0 +1,60 @@
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { may, type Permission, type Reach } from '../../shared/catalog/permissions.ts';
+import { roles, type Role } from '../../shared/catalog/roles.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+
+const nobody = '00000000-0000-4000-8000-000000000000';
+
+interface Door {
+  method: 'get' | 'post' | 'put' | 'patch' | 'delete';
+  /** Path below the estate; ids that do not exist are enough, the guard comes first. */
+  path: string;
+  action: Permission;
+  atLeast: Reach;
+}
+
+const door = (method: Door['method'], path: string, action: Permission, atLeast: Reach = 'do'): Door => ({ method, path, action, atLeast });
+
+/** Every door of an estate with what it asks for. A new route adds its row here. */
+const doors: Door[] = [
+  door('get', '', 'estate.see', 'read'),
+  door('patch', '', 'estate.settings'),
+  door('get', '/people', 'people.see', 'read'),
+  door('put', `/people/${nobody}/roles`, 'people.manage', 'propose'),
+  door('get', '/invitations', 'people.see', 'read'),
+  door('post', '/invitations', 'people.manage', 'propose'),
+  door('delete', `/invitations/${nobody}`, 'people.manage', 'propose'),
+  door('get', '/audit', 'audit.see', 'read'),
+  door('get', '/mail', 'mail.see'),
+  door('get', `/jobs/${nobody}`, 'estate.see', 'read'),
+  door('delete', `/jobs/${nobody}`, 'zoning.run', 'propose'),
+];
+
+let app: TestApp;
+let estateId: string;
+const agents = new Map<Role, Agent>();
+
+beforeAll(async () => {
+  app = await startTestApp();
+  ({ estateId } = await app.addEstate());
+  for (const role of roles) agents.set(role, await app.as((await app.addPerson(estateId, role)).email));
+});
+afterAll(() => app.close());
+
+describe.each(doors)('$method $path asks for $action ($atLeast)', ({ method, path, action, atLeast }) => {
+  it.each(roles)('%s', async (role) => {
+    const agent = agents.get(role)!;
+    const answer = method === 'get' ? await agent.get(`/api/estates/${estateId}${path}`) : await agent[method](`/api/estates/${estateId}${path}`, {});
+    if (may([role], action, atLeast)) expect([401, 403, 500]).not.toContain(answer.status);
+    else expect(answer.status).toBe(403);
+  });
+});
+
+describe('doors of another estate', () => {
+  it.each(doors)('$method $path is not found', async ({ method, path }) => {
+    const other = await app.addEstate();
+    const agent = agents.get('owner')!;
+    const url = `/api/estates/${other.estateId}${path}`;
+    expect((method === 'get' ? await agent.get(url) : await agent[method](url, {})).status).toBe(404);
+  });
+});

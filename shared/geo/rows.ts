@@ -1,5 +1,6 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
 import type { LonLat, MultiPolygonLonLat } from './coordinates.ts';
+import { polygonsCentroid } from './rings.ts';
 import { lineBearing, ringMiddle, type RowFrame } from './rowFrame.ts';
 import { layRows, type PieceXY, type PlantingFacts, type RowsXY, type RowWarning, type RowXY } from './rowsLayout.ts';
 import { convergenceDeg, fromUtm, polygonsToUtm, utmEpsg } from './utm.ts';
@@ -36,7 +37,7 @@ export function buildRows(boundary: MultiPolygonLonLat, facts: RowFacts): BlockR
   const ring = boundary[0]?.[0];
   if (ring === undefined || ring.length < 3) throw new AnalysisError('no-outline', 'The block has no outline; draw or upload it before building rows.');
   if (!Number.isFinite(facts.bearingDeg)) throw new AnalysisError('bad-bearing', `Row bearing is ${facts.bearingDeg}; type degrees from 0 to 360.`);
-  const epsg = facts.epsg ?? utmEpsg(ringMiddle(ring));
+  const epsg = facts.epsg ?? utmEpsg(polygonsCentroid(boundary));
   const boundaryXY = polygonsToUtm(boundary, epsg);
   const frame: RowFrame = { originXY: boundaryXY[0]![0]![0]!, gridBearingDeg: gridBearing(facts, ringMiddle(ring), epsg) };
   const { rows, warnings } = layRows(boundaryXY, frame, facts);

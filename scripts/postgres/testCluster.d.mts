@@ -1,0 +1,1 @@
+export function startTestCluster(): Promise<{ url: string; stop(): Promise<void> }>;

@@ -1,0 +1,182 @@
+import { offlineProblem, problemFrom, HttpProblem } from './httpProblem.ts';
+
+/** The only door to the server: cookie session, CSRF header on writes, problem+json turned into HttpProblem. */
+
+type QueryValue = string | number | boolean | null | undefined;
+
+export interface RequestOptions {
+  readonly query?: Readonly<Record<string, QueryValue>>;
+  readonly signal?: AbortSignal;
+  /** Version that the change is based on; the server answers 409 or 412 when somebody was faster. */
+  readonly ifMatch?: string | number;
+}
+
+export interface Tagged<T> {
+  readonly data: T;
+  readonly etag: string | null;
+}
+
+export interface UploadOptions extends RequestOptions {
+  readonly onProgress?: (sentBytes: number, totalBytes: number) => void;
+}
+
+type Method = 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE';
+
+let csrfToken = '';
+let onSignedOut: () => void = () => undefined;
+let onContact: (reached: boolean) => void = () => undefined;
+
+/** The session says which token writes need; it changes at sign-in. */
+export function setCsrfToken(token: string): void {
+  csrfToken = token;
+}
+
+/** Called when the server says that nobody is signed in any more. */
+export function whenSignedOut(handler: () => void): void {
+  onSignedOut = handler;
+}
+
+/** Called after every request: true when the server answered at all. */
+export function whenContacted(handler: (reached: boolean) => void): void {
+  onContact = handler;
+}
+
+export const http = {
+  get: <T>(path: string, options?: RequestOptions) => json<T>('GET', path, undefined, options),
+  post: <T>(path: string, body?: unknown, options?: RequestOptions) => json<T>('POST', path, body, options),
+  put: <T>(path: string, body?: unknown, options?: RequestOptions) => json<T>('PUT', path, body, options),
+  patch: <T>(path: string, body?: unknown, options?: RequestOptions) => json<T>('PATCH', path, body, options),
+  delete: <T = void>(path: string, options?: RequestOptions) => json<T>('DELETE', path, undefined, options),
+
+  /** With the entity tag that a later change sends back as `ifMatch`. */
+  async getTagged<T>(path: string, options: RequestOptions = {}): Promise<Tagged<T>> {
+    const response = await send('GET', path, { options });
+    return { data: (await response.json()) as T, etag: response.headers.get('etag') };
+  },
+
+  /** Raw bytes, such as the cells of a layer. */
+  async getBytes(path: string, options: RequestOptions = {}): Promise<ArrayBuffer> {
+    return (await send('GET', path, { options })).arrayBuffer();
+  },
+
+  upload,
+  download,
+};
+
+async function json<T>(method: Method, path: string, body: unknown, options: RequestOptions = {}): Promise<T> {
+  const response = await send(method, path, { options, body });
+  if (response.status === 204) return undefined as T;
+  return (await response.json()) as T;
+}
+
+interface Sending {
+  options: RequestOptions;
+  body?: unknown;
+}
+
+async function send(method: Method, path: string, { options, body }: Sending, retried = false): Promise<Response> {
+  const response = await reach(addressOf(path, options.query), {
+    method,
+    credentials: 'same-origin',
+    headers: headersOf(method, body, options),
+    ...(body === undefined ? {} : { body: JSON.stringify(body) }),
+    ...(options.signal ? { signal: options.signal } : {}),
+  });
+  if (response.ok) return response;
+  const problem = problemFrom(response.status, await response.json().catch(() => null));
+  // A token from before a sign-in in another tab is refused: when the session has a newer one, ask once more.
+  if (problem.status === 403 && method !== 'GET' && !retried && (await isTokenRenewed())) return send(method, path, { options, body }, true);
+  if (problem.status === 401 && path !== '/api/session') onSignedOut();
+  throw problem;
+}
+
+async function reach(address: string, init: RequestInit): Promise<Response> {
+  try {
+    const response = await fetch(address, init);
+    // A gateway that cannot find the server is no contact either.
+    const reached = response.status !== 502 && response.status !== 504;
+    onContact(reached);
+    if (!reached) throw offlineProblem();
+    return response;
+  } catch (error) {
+    if (error instanceof DOMException && error.name === 'AbortError') throw error;
+    if (error instanceof HttpProblem) throw error;
+    onContact(false);
+    throw offlineProblem(error);
+  }
+}
+
+function headersOf(method: Method, body: unknown, options: RequestOptions): Record<string, string> {
+  return {
+    accept: 'application/json, application/problem+json',
+    ...(body === undefined ? {} : { 'content-type': 'application/json' }),
+    ...(method === 'GET' ? {} : { 'x-csrf-token': csrfToken }),
+    ...(options.ifMatch === undefined ? {} : { 'if-match': tagText(options.ifMatch) }),
+  };
+}
+
+function tagText(version: string | number): string {
+  return typeof version === 'number' ? `"${version}"` : version;
+}
+
+function addressOf(path: string, query: RequestOptions['query'] = {}): string {
+  const entries = Object.entries(query).filter(([, value]) => value !== null && value !== undefined);
+  if (entries.length === 0) return path;
+  return `${path}?${new URLSearchParams(entries.map(([key, value]) => [key, String(value)])).toString()}`;
+}
+
+async function isTokenRenewed(): Promise<boolean> {
+  const before = csrfToken;
+  const response = await reach('/api/session', { credentials: 'same-origin', headers: { accept: 'application/json' } });
+  const session = (await response.json()) as { csrfToken: string };
+  setCsrfToken(session.csrfToken);
+  return session.csrfToken !== before;
+}
+
+/** Multipart upload that says how far it is; fetch cannot. Field name `files`, other fields as text. */
+function upload<T>(path: string, form: FormData, options: UploadOptions = {}): Promise<T> {
+  return new Promise<T>((resolve, reject) => {
+    const request = new XMLHttpRequest();
+    request.open('POST', addressOf(path, options.query));
+    request.responseType = 'json';
+    request.setRequestHeader('accept', 'application/json, application/problem+json');
+    request.setRequestHeader('x-csrf-token', csrfToken);
+    request.upload.onprogress = (event) => options.onProgress?.(event.loaded, event.total);
+    request.onload = () => {
+      onContact(true);
+      if (request.status >= 200 && request.status < 300) return resolve(request.response as T);
+      const problem = problemFrom(request.status, request.response);
+      if (problem.status === 401) onSignedOut();
+      reject(problem);
+    };
+    request.onerror = () => {
+      onContact(false);
+      reject(offlineProblem());
+    };
+    request.onabort = () => reject(new DOMException('Upload stopped.', 'AbortError'));
+    options.signal?.addEventListener('abort', () => request.abort());
+    request.send(form);
+  });
+}
+
+/** Fetches a file and hands it to the browser under the name the server gave, or the one given here. */
+async function download(path: string, fallbackName: string, options: RequestOptions = {}): Promise<string> {
+  const response = await send('GET', path, { options });
+  const name = fileNameFrom(response.headers.get('content-disposition')) ?? fallbackName;
+  const address = URL.createObjectURL(await response.blob());
+  const link = document.createElement('a');
+  link.href = address;
+  link.download = name;
+  link.click();
+  // Some browsers start reading only after the click returns.
+  setTimeout(() => URL.revokeObjectURL(address), 30_000);
+  return name;
+}
+
+/** File name of a content-disposition header (RFC 6266: the starred form wins). */
+export function fileNameFrom(header: string | null): string | null {
+  if (header === null) return null;
+  const starred = /filename\*\s*=\s*UTF-8''([^;]+)/i.exec(header)?.[1];
+  if (starred !== undefined) return decodeURIComponent(starred.trim());
+  return /filename\s*=\s*"([^"]*)"/i.exec(header)?.[1] ?? /filename\s*=\s*([^;\s]+)/i.exec(header)?.[1] ?? null;
+}

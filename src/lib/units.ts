@@ -1,0 +1,38 @@
+/** Stored in SI and metric, shown in the system a person chose. Factors: NIST SP 811 (2008), Appendix B. */
+export type UnitSystem = 'metric' | 'us';
+
+export const quantities = {
+  area: { metric: ['ha', 1, 2], us: ['ac', 2.4710538, 2] },
+  length: { metric: ['m', 1, 1], us: ['ft', 3.2808399, 1] },
+  distance: { metric: ['km', 1, 1], us: ['mi', 0.62137119, 1] },
+  fruitMass: { metric: ['t', 1, 1], us: ['short tons', 1.1023113, 1] },
+  mass: { metric: ['kg', 1, 2], us: ['lb', 2.2046226, 2] },
+  yield: { metric: ['t/ha', 1, 1], us: ['tons/ac', 0.44609, 1] },
+  volume: { metric: ['L', 1, 0], us: ['US gal', 0.26417205, 0] },
+  juice: { metric: ['L/t', 1, 0], us: ['US gal/ton', 0.23965, 0] },
+  temperature: { metric: ['°C', 1, 0], us: ['°F', 1.8, 0] },
+} as const satisfies Record<string, Record<UnitSystem, readonly [unit: string, factor: number, decimals: number]>>;
+
+export type Quantity = keyof typeof quantities;
+
+const freezingF = 32;
+
+/** Value as shown: `shownValue('area', 1, 'us')` is 2.4710538. */
+export function shownValue(quantity: Quantity, stored: number, system: UnitSystem): number {
+  const value = stored * quantities[quantity][system][1];
+  return quantity === 'temperature' && system === 'us' ? value + freezingF : value;
+}
+
+/** Value as stored, from what a person typed. */
+export function storedValue(quantity: Quantity, shown: number, system: UnitSystem): number {
+  const value = quantity === 'temperature' && system === 'us' ? shown - freezingF : shown;
+  return value / quantities[quantity][system][1];
+}
+
+export function unitOf(quantity: Quantity, system: UnitSystem): string {
+  return quantities[quantity][system][0];
+}
+
+export function decimalsOf(quantity: Quantity, system: UnitSystem): number {
+  return quantities[quantity][system][2];
+}

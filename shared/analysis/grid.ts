@@ -7,7 +7,7 @@ import type { MultiPolygonLonLat, MultiPolygonXY, XY } from '../geo/coordinates.
 import { polygonsCentroid } from '../geo/rings.ts';
 import { polygonsToUtm, utmEpsg } from '../geo/utm.ts';
 import { AnalysisError } from './analysisError.ts';
-import { cellShares, type CellRing } from './cellShares.ts';
+import { eachCellShare, type CellRing } from './cellShares.ts';
 
 export interface Grid {
   /** Names the cells: equal keys mean equal cells. Every stored array of cells carries it. */
@@ -53,12 +53,9 @@ export function defineGrid(boundaryLonLat: MultiPolygonLonLat, cellSizeM: number
 /** The same from an outline that is already in the metres of a UTM zone. */
 export function gridOfOutline(outlineXY: MultiPolygonXY, epsg: number, cellSizeM: number): Grid {
   const frame = frameOf(outlineXY, cellSizeM);
-  const window = cellShares(outlineXY.map((rings) => rings.map((ring) => toCellRing(ring, frame))), frame.cols, frame.rows);
   const share = new Float32Array(frame.cols * frame.rows);
-  for (let row = 0; row < window.rows; row++) {
-    const from = row * window.cols;
-    share.set(window.share.subarray(from, from + window.cols), (row + window.firstRow) * frame.cols + window.firstCol);
-  }
+  const rings = outlineXY.map((polygon) => polygon.map((ring) => toCellRing(ring, frame)));
+  eachCellShare(rings, frame, (cell, part) => (share[cell] = part));
   const inside = new Uint8Array(share.length);
   for (let cell = 0; cell < share.length; cell++) {
     const part = share[cell]!;

@@ -1,0 +1,105 @@
+/**
+ * Averages the pixels of a raster onto the cells of a grid, tile by tile, without holding the raster.
+ * A pixel with no data, NaN or infinity in any band counts in none. Bands are averaged; an index is taken afterwards.
+ * Fine pixels (four or more across a cell) count in the cell their centre lies in; coarser ones in every cell by the area
+ * they share with it. Whole-number samples are summed exactly whatever the order of tiles; float samples in tile order.
+ * Cost: pixels × bands; memory: cells × (bands + 1) doubles.
+ */
+import type { GridFrame } from './grid.ts';
+import { pixelAreaInCells, pixelsPerCell, pixelsToCells, pixelWindow, type PixelWindow, type RasterFrame } from './resampleFrame.ts';
+import type { PlaneMap } from './resampleMap.ts';
+import { addByCentre, addByCentreTable, centreTables, type CentreTables } from './resampleSumsCentre.ts';
+import { addByQuad } from './resampleSumsQuad.ts';
+import { addByOverlap, overlapTables, type OverlapTables } from './resampleSumsOverlap.ts';
+import { storedNoData, type PixelSink, type PixelTile } from './resampleTile.ts';
+
+export interface SumsOptions {
+  readonly bands: number;
+  /** Number that means "no data" in each band, null for none. */
+  readonly noData?: readonly (number | null)[];
+  /** auto: by centre from four pixels across a cell on, by area below that. */
+  readonly weighting?: 'auto' | 'centre' | 'area';
+}
+
+/** Sums of each band and of the weight, one after the other: band b of a cell is at b · cells + cell, the weight comes last. */
+export interface SumTable {
+  readonly values: Float64Array;
+  readonly bands: number;
+  readonly cols: number;
+  readonly rows: number;
+}
+
+/** Pixels [fromCol, toCol) × [fromRow, toRow) of a tile that may touch the grid, in raster positions. */
+export interface TilePart {
+  readonly tile: PixelTile;
+  readonly noData: readonly number[];
+  readonly fromCol: number;
+  readonly toCol: number;
+  readonly fromRow: number;
+  readonly toRow: number;
+}
+
+/** Any way to add pixels to sums; chosen once per raster. */
+type AddPart = (sums: SumTable, part: TilePart) => void;
+
+export class CellSums implements PixelSink {
+  /** Pixels that need reading; null when the raster does not touch the grid. */
+  readonly window: PixelWindow | null;
+  private readonly sums: SumTable;
+  private readonly noData: readonly (number | null)[];
+  private readonly addPart: AddPart;
+  private readonly weightOfPixel: number;
+
+  constructor(grid: GridFrame, frame: RasterFrame, { bands, noData = [], weighting = 'auto' }: SumsOptions) {
+    this.window = pixelWindow(grid, frame);
+    this.sums = { values: new Float64Array(grid.cols * grid.rows * (bands + 1)), bands, cols: grid.cols, rows: grid.rows };
+    this.noData = noData;
+    const byCentre = weighting === 'centre' || (weighting === 'auto' && pixelsPerCell(grid, frame) > 3.999);
+    this.weightOfPixel = byCentre && this.window !== null ? pixelAreaInCells(grid, frame) : 1;
+    this.addPart = this.window === null ? () => undefined : wayToAdd(grid, pixelsToCells(grid, frame, this.window), { byCentre, window: this.window });
+  }
+
+  add(tile: PixelTile): void {
+    if (this.window === null) return;
+    const { firstCol, firstRow, cols, rows } = this.window;
+    this.addPart(this.sums, {
+      tile,
+      noData: storedNoData(tile, this.noData),
+      fromCol: Math.max(tile.firstCol, firstCol),
+      toCol: Math.min(tile.firstCol + tile.cols, firstCol + cols),
+      fromRow: Math.max(tile.firstRow, firstRow),
+      toRow: Math.min(tile.firstRow + tile.rows, firstRow + rows),
+    });
+  }
+
+  /** Mean of each band per cell; NaN where no pixel with data touched the cell. */
+  cells(): Float32Array[] {
+    const { values, bands, cols, rows } = this.sums;
+    const count = cols * rows;
+    return Array.from({ length: bands }, (_, band) => {
+      const means = new Float32Array(count);
+      for (let cell = 0; cell < count; cell++) {
+        const weight = values[bands * count + cell]!;
+        means[cell] = weight > 1e-9 ? values[band * count + cell]! / weight : NaN;
+      }
+      return means;
+    });
+  }
+
+  /** Share of each cell's area under pixels with data, 0…1. */
+  covered(): Float32Array {
+    const { values, bands, cols, rows } = this.sums;
+    return Float32Array.from(values.subarray(bands * cols * rows), (weight) => Math.min(1, weight * this.weightOfPixel));
+  }
+}
+
+function wayToAdd(grid: GridFrame, map: PlaneMap, { byCentre, window }: { byCentre: boolean; window: PixelWindow }): AddPart {
+  if (byCentre && !map.isSeparable) return (sums, part) => addByCentre(sums, part, map);
+  if (!map.isSeparable) return (sums, part) => addByQuad(sums, part, map);
+  if (byCentre) {
+    const tables: CentreTables = centreTables(grid, map, window);
+    return (sums, part) => addByCentreTable(sums, part, tables);
+  }
+  const tables: OverlapTables = overlapTables(grid, map, window);
+  return (sums, part) => addByOverlap(sums, part, tables);
+}

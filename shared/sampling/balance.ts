@@ -1,0 +1,43 @@
+import type { Units } from './pivotal.ts';
+
+/** How well a sample is spread over its units; both are 0 for a sample of everything. */
+export interface Spread {
+  /**
+   * Mean of (v - 1)², v = sum of the inclusion probabilities of the units nearest to a sampled unit, ties split
+   * (Stevens & Olsen 2004 as used by Grafström et al. 2012). 0 is best; a simple random sample of vines is near 0.25.
+   */
+  readonly balance: number;
+  /** Mean over all units of the squared distance to the nearest sampled unit, m². Sees what the balance cannot: samples in one row. */
+  readonly meanSquaredDistanceM2: number;
+}
+
+const TIE_M2 = 1e-9;
+
+/** Example: 4 × 4 units, p 0.25, sample (1,1)(3,1)(1,3)(3,3): balance 0.12890625. */
+export function sampleSpread(units: Units, sample: readonly number[]): Spread {
+  const shares = new Float64Array(sample.length);
+  const squares = new Float64Array(sample.length);
+  let total = 0;
+  for (let unit = 0; unit < units.p.length; unit++) {
+    let least = Infinity;
+    sample.forEach((chosen, i) => {
+      squares[i] = (units.x[chosen]! - units.x[unit]!) ** 2 + (units.y[chosen]! - units.y[unit]!) ** 2;
+      least = Math.min(least, squares[i]!);
+    });
+    const nearest = Array.from(squares.keys()).filter((i) => squares[i]! <= least + TIE_M2 * (1 + least));
+    for (const i of nearest) shares[i]! += units.p[unit]! / nearest.length;
+    total += least;
+  }
+  const balance = shares.reduce((sum, share) => sum + (share - 1) ** 2, 0) / sample.length;
+  return { balance, meanSquaredDistanceM2: total / units.p.length };
+}
+
+/** Targets that lie at least `apartM` from each other, counted greedily in draw order: in how many places one looks. */
+export function placeCount(units: Pick<Units, 'x' | 'y'>, sample: readonly number[], apartM: number): number {
+  const places: number[] = [];
+  for (const unit of sample) {
+    const isNew = places.every((place) => Math.hypot(units.x[place]! - units.x[unit]!, units.y[place]! - units.y[unit]!) >= apartM);
+    if (isNew) places.push(unit);
+  }
+  return places.length;
+}

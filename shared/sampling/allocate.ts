@@ -1,0 +1,164 @@
+import { AnalysisError } from '../analysis/analysisError.ts';
+import { HARD_MINIMUM } from './sampleSize.ts';
+
+/**
+ * Sharing a number of samples between zones so that the mean over all of them is known best.
+ * N vines and spread S per zone, W = N/ΣN. Sources: Cochran 1977 §§5.5–5.9; Neyman 1934; exact whole numbers
+ * Wright 2012, The American Statistician 66:217 (the arithmetic of equal proportions for seats in parliament).
+ */
+export interface AllocationZone {
+  readonly vines: number;
+  /** Spread in the measure's unit (or any unit common to the zones). */
+  readonly sd: number;
+  /** Cost of one sample (seconds, money); 1 when left out. */
+  readonly cost?: number;
+  readonly minimum?: number;
+  readonly maximum?: number;
+}
+
+export function costOf(zone: AllocationZone): number {
+  return zone.cost ?? 1;
+}
+
+export function minimumOf(zone: AllocationZone): number {
+  return Math.min(zone.minimum ?? HARD_MINIMUM, maximumOf(zone));
+}
+
+export function maximumOf(zone: AllocationZone): number {
+  return Math.min(zone.maximum ?? zone.vines, zone.vines);
+}
+
+export function totalVines(zones: readonly { readonly vines: number }[]): number {
+  return zones.reduce((sum, zone) => sum + zone.vines, 0);
+}
+
+function sumOver(zones: readonly AllocationZone[], term: (zone: AllocationZone) => number): number {
+  return zones.reduce((sum, zone) => sum + term(zone), 0);
+}
+
+/** ΣW²(1 − n/N)S²/n: variance of the mean over all zones. Infinity when a zone with spread has no sample. */
+export function allocationVariance(zones: readonly AllocationZone[], counts: readonly number[]): number {
+  const all = totalVines(zones);
+  return zones.reduce((sum, zone, i) => {
+    const n = counts[i]!;
+    if (zone.sd === 0 || n >= zone.vines) return sum;
+    const share = zone.vines / all;
+    return sum + share * share * zone.sd * zone.sd * (1 / n - 1 / zone.vines);
+  }, 0);
+}
+
+/** (E/z)²: the variance that just keeps margin E with the factor z (or t). */
+export function targetVariance(margin: number, factor: number): number {
+  return (margin / factor) ** 2;
+}
+
+/** Unrounded shares n·W. */
+export function proportionalShares(zones: readonly AllocationZone[], total: number): number[] {
+  const all = totalVines(zones);
+  return zones.map((zone) => (total * zone.vines) / all);
+}
+
+/** Unrounded shares by spread, n·NS/ΣNS. Example: vines 900 600 300, S 1.1 0.8 1.5, n 30 → 15.46875 7.5 7.03125. */
+export function neymanShares(zones: readonly AllocationZone[], total: number): number[] {
+  const all = sumOver(zones, (zone) => zone.vines * zone.sd);
+  return all > 0 ? zones.map((zone) => (total * zone.vines * zone.sd) / all) : proportionalShares(zones, total);
+}
+
+/** Unrounded shares by spread and cost, n ∝ NS/√c. */
+export function costShares(zones: readonly AllocationZone[], total: number): number[] {
+  const all = sumOver(zones, (zone) => (zone.vines * zone.sd) / Math.sqrt(costOf(zone)));
+  if (all === 0) return proportionalShares(zones, total);
+  return zones.map((zone) => (total * zone.vines * zone.sd) / Math.sqrt(costOf(zone)) / all);
+}
+
+/** Unrounded shares that spend a budget (over fixed cost) best. Example: costs 2 2 5, budget 90 → 20.42 9.90 5.87. */
+export function costSharesForBudget(zones: readonly AllocationZone[], budget: number): number[] {
+  const all = sumOver(zones, (zone) => zone.vines * zone.sd * Math.sqrt(costOf(zone)));
+  return zones.map((zone) => (budget * zone.vines * zone.sd) / Math.sqrt(costOf(zone)) / all);
+}
+
+/** Unrounded total for a target variance when shared by spread: the least that any sharing can reach. */
+export function neymanTotal(zones: readonly AllocationZone[], variance: number): number {
+  const all = totalVines(zones);
+  const spread = sumOver(zones, (zone) => (zone.vines / all) * zone.sd);
+  return (spread * spread) / (variance + populationTerm(zones));
+}
+
+/** Unrounded total for a target variance when shared by size, and before the finite population correction. */
+export function proportionalTotal(zones: readonly AllocationZone[], variance: number): { readonly total: number; readonly uncorrected: number } {
+  const all = totalVines(zones);
+  const uncorrected = sumOver(zones, (zone) => (zone.vines / all) * zone.sd * zone.sd) / variance;
+  return { total: uncorrected / (1 + uncorrected / all), uncorrected };
+}
+
+/** Unrounded total for a target variance when shared by spread and cost. */
+export function costTotal(zones: readonly AllocationZone[], variance: number): number {
+  const all = totalVines(zones);
+  const dear = sumOver(zones, (zone) => (zone.vines / all) * zone.sd * Math.sqrt(costOf(zone)));
+  const cheap = sumOver(zones, (zone) => ((zone.vines / all) * zone.sd) / Math.sqrt(costOf(zone)));
+  return (dear * cheap) / (variance + populationTerm(zones));
+}
+
+/** ΣW·S²/N with N the vines of all zones: what the finite zones take off the variance. */
+function populationTerm(zones: readonly AllocationZone[]): number {
+  const all = totalVines(zones);
+  return sumOver(zones, (zone) => ((zone.vines / all) * zone.sd * zone.sd) / all);
+}
+
+/**
+ * Whole numbers with the smallest variance for a total: every zone starts at its minimum, then each sample goes to
+ * the largest N·S/√(n(n+1)). With `byCost` the square of that priority is divided by the zone's cost.
+ */
+export function exactCounts(zones: readonly AllocationZone[], total: number, { byCost = false } = {}): number[] {
+  const counts = startAtMinimum(zones, total);
+  let left = total - counts.reduce((sum, n) => sum + n, 0);
+  while (left > 0) {
+    const next = bestNext(zones, counts, byCost);
+    if (next < 0) break;
+    counts[next]! += 1;
+    left -= 1;
+  }
+  return counts;
+}
+
+/** Zone whose next sample lowers the variance most (per cost); −1 when all are full. */
+function bestNext(zones: readonly AllocationZone[], counts: readonly number[], byCost: boolean): number {
+  let best = -1;
+  let bestGain = -1;
+  zones.forEach((zone, i) => {
+    const n = counts[i]!;
+    if (n >= maximumOf(zone)) return;
+    const gain = n === 0 ? Infinity : (zone.vines * zone.sd) ** 2 / (n * (n + 1)) / (byCost ? costOf(zone) : 1);
+    if (gain > bestGain) {
+      best = i;
+      bestGain = gain;
+    }
+  });
+  return best;
+}
+
+/** The minimum of every zone, or a sentence when the total cannot hold them: raising it silently would hide the cost. */
+export function startAtMinimum(zones: readonly AllocationZone[], total: number): number[] {
+  const counts = zones.map(minimumOf);
+  const needed = counts.reduce((sum, n) => sum + n, 0);
+  if (needed > total) {
+    throw new AnalysisError('total_below_minimum', `${zones.length} zones need at least ${needed} samples in all to keep their minimum; ${total} were asked for. Allow ${needed} or fewer zones.`);
+  }
+  return counts;
+}
+
+/** Whole numbers as near as possible to unrounded shares within each zone's minimum and maximum. */
+export function nearestCounts(zones: readonly AllocationZone[], shares: readonly number[], total: number): number[] {
+  const counts = startAtMinimum(zones, total);
+  let left = total - counts.reduce((sum, n) => sum + n, 0);
+  while (left > 0) {
+    let best = -1;
+    zones.forEach((zone, i) => {
+      if (counts[i]! < maximumOf(zone) && (best < 0 || shares[i]! - counts[i]! > shares[best]! - counts[best]!)) best = i;
+    });
+    if (best < 0) break;
+    counts[best]! += 1;
+    left -= 1;
+  }
+  return counts;
+}

@@ -1,0 +1,65 @@
+import { allocationVariance, maximumOf, minimumOf, neymanTotal, targetVariance, totalVines, type AllocationZone } from './allocate.ts';
+import { allocationMethod, type AllocationMethodId } from './allocationMethods.ts';
+import { checkConfidence, checkMargin } from './margins.ts';
+import { criticalT, criticalZ } from './quantiles.ts';
+
+/** How many samples for the mean over several zones (a block, a lot), shared by a method. Cochran 1977 ch. 5. */
+export interface BlockQuestion {
+  readonly zones: readonly AllocationZone[];
+  readonly margin: number;
+  readonly confidence: number;
+  readonly method: AllocationMethodId;
+  /** 't' allows for the spread being re-estimated from these samples (Satterthwaite); 'z' takes it as known. */
+  readonly factor?: 't' | 'z';
+}
+
+export interface BlockAnswer {
+  readonly counts: readonly number[];
+  readonly total: number;
+  readonly variance: number;
+  readonly df: number;
+  readonly halfWidth: number;
+  /** False when even all allowed samples miss the margin. */
+  readonly reached: boolean;
+  /** True when the zones' minimum alone already keeps the margin. */
+  readonly atMinimum: boolean;
+}
+
+/** Precision of given counts. Example: vines 900 600 300, S 1.1 0.8 1.5, counts 15 8 7 → variance 0.037321. */
+export function blockPrecision(zones: readonly AllocationZone[], counts: readonly number[], how: { confidence: number; factor?: 't' | 'z' }): Omit<BlockAnswer, 'reached' | 'atMinimum'> {
+  const variance = allocationVariance(zones, counts);
+  const df = satterthwaite(zones, counts, variance);
+  const factor = (how.factor ?? 't') === 'z' ? criticalZ(how.confidence) : criticalT(how.confidence, df);
+  const halfWidth = variance === 0 ? 0 : factor * Math.sqrt(variance);
+  return { counts: [...counts], total: counts.reduce((sum, n) => sum + n, 0), variance, df, halfWidth };
+}
+
+/** Degrees of freedom of the mean over zones (Satterthwaite 1946), from the planned counts. */
+function satterthwaite(zones: readonly AllocationZone[], counts: readonly number[], variance: number): number {
+  if (variance === 0) return Infinity;
+  const all = totalVines(zones);
+  let sum = 0;
+  zones.forEach((zone, i) => {
+    const n = counts[i]!;
+    if (n >= zone.vines || zone.sd === 0) return;
+    const share = zone.vines / all;
+    const part = share * share * zone.sd * zone.sd * (1 / n - 1 / zone.vines);
+    sum += (part * part) / (n - 1);
+  });
+  return (variance * variance) / sum;
+}
+
+/** The smallest total whose sharing keeps the margin. No sharing can do with fewer than the Neyman total, where the search starts. */
+export function blockSampleSize({ zones, margin, confidence, method, factor = 't' }: BlockQuestion): BlockAnswer {
+  checkMargin(margin);
+  checkConfidence(confidence);
+  const least = zones.reduce((sum, zone) => sum + minimumOf(zone), 0);
+  const most = zones.reduce((sum, zone) => sum + maximumOf(zone), 0);
+  const share = allocationMethod(method).counts;
+  const bound = neymanTotal(zones, targetVariance(margin, criticalZ(confidence)));
+  for (let total = Math.max(least, Math.floor(bound)); ; total++) {
+    const answer = blockPrecision(zones, share(zones, Math.min(total, most)), { confidence, factor });
+    const reached = answer.halfWidth <= margin * (1 + 1e-12);
+    if (reached || total >= most) return { ...answer, reached, atMinimum: answer.total <= least };
+  }
+}

@@ -1,0 +1,133 @@
+import { minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
+import { leastCostCounts, type LeastCostAnswer, type LeastCostProblem } from './leastCost.ts';
+import { checkConfidence, checkMargin } from './margins.ts';
+import { criticalT, criticalZ } from './quantiles.ts';
+import { sampleSize, type SampleSize } from './sampleSize.ts';
+
+/**
+ * Several measures taken on the same walk. Either every zone must keep every margin itself (the usual wish for pick
+ * lots), or the mean over the zones must, and then the cheapest whole counts are found exactly.
+ * Sources: Cochran 1977 §5A.4; Kokan & Khan 1967; Bethel 1989, Survey Methodology 15:47.
+ */
+export interface SharedZone {
+  readonly vines: number;
+  /** Cost of one vine with all its measures; 1 when left out. */
+  readonly cost?: number;
+  readonly minimum?: number;
+  readonly maximum?: number;
+}
+
+export interface MeasureDemand {
+  readonly code: string;
+  /** One spread per zone, on the scale of the margin. */
+  readonly spreads: readonly number[];
+  readonly margin: number;
+  readonly confidence: number;
+}
+
+export interface ZoneDemand {
+  /** Largest count over the measures. */
+  readonly n: number;
+  /** Which measure asks for it; null when the floor does. */
+  readonly driver: string | null;
+  readonly byMeasure: readonly SampleSize[];
+}
+
+/** Counts when every zone must keep every margin. Example: Brix 22 13 38, pH 18 33 13, clusters 41 20 57 → 41 33 57. */
+export function everyZoneCounts(zones: readonly SharedZone[], measures: readonly MeasureDemand[], { finitePopulation = true } = {}): ZoneDemand[] {
+  return zones.map((zone, i) => {
+    const populationSize = finitePopulation ? zone.vines : Infinity;
+    const byMeasure = measures.map(({ spreads, margin, confidence }) => sampleSize({ spread: spreads[i]!, margin, confidence, populationSize, minimum: zone.minimum }));
+    const n = Math.max(...byMeasure.map((answer) => answer.n));
+    const largest = byMeasure.findIndex((answer) => answer.n === n);
+    return { n, driver: byMeasure[largest]!.limitedBy === 'minimum' ? null : measures[largest]!.code, byMeasure };
+  });
+}
+
+export interface SharedAnswer {
+  readonly counts: readonly number[];
+  readonly cost: number;
+  /** Variance of the mean over zones as a share of what is allowed, per measure; 1 is just enough. */
+  readonly ratios: readonly number[];
+  /** Measures whose limit decides, the heaviest first; empty when the zones' minimum is enough. */
+  readonly binding: readonly string[];
+  readonly relaxed: readonly number[];
+  readonly lowerBound: number;
+  readonly reached: boolean;
+  readonly proved: boolean;
+}
+
+/** A limit that carries less than this share of the price does not decide. */
+const DECIDES = 0.01;
+
+/** Cheapest whole counts with which the mean over all zones keeps every margin. */
+export function leastCostForAll(zones: readonly SharedZone[], measures: readonly MeasureDemand[], { factor = 't' }: { factor?: 't' | 'z' } = {}): SharedAnswer {
+  for (const { margin, confidence } of measures) {
+    checkMargin(margin);
+    checkConfidence(confidence);
+  }
+  let targets = measures.map(({ margin, confidence }) => targetVariance(margin, criticalZ(confidence)));
+  let answer = solve(zones, measures, targets);
+  // The t factor depends on the counts that it decides; a few rounds settle it, always on the safe side.
+  for (let round = 0; factor === 't' && round < 12; round++) {
+    const strict = measures.map(({ spreads, margin, confidence }, j) => {
+      const df = degreesOfFreedom(zones, spreads, answer.counts);
+      return Math.min(targets[j]!, targetVariance(margin, criticalT(confidence, df)));
+    });
+    if (strict.every((target, j) => varianceOf(zones, measures[j]!.spreads, answer.counts) <= target * (1 + 1e-12))) break;
+    targets = strict;
+    answer = solve(zones, measures, targets);
+  }
+  const order = answer.weights.map((weight, j) => ({ weight, code: measures[j]!.code })).sort((a, b) => b.weight - a.weight);
+  const overMinimum = answer.counts.some((n, i) => n > minimumOf({ ...zones[i]!, sd: 0 }));
+  return {
+    counts: answer.counts,
+    cost: answer.cost,
+    ratios: measures.map(({ spreads }, j) => varianceOf(zones, spreads, answer.counts) / targets[j]!),
+    binding: overMinimum ? order.filter(({ weight }) => weight >= DECIDES).map(({ code }) => code) : [],
+    relaxed: answer.relaxed,
+    lowerBound: answer.lowerBound,
+    reached: answer.reached,
+    proved: answer.proved,
+  };
+}
+
+function solve(zones: readonly SharedZone[], measures: readonly MeasureDemand[], targets: readonly number[]): LeastCostAnswer {
+  const all = totalVines(zones);
+  const terms = measures.map(({ spreads }) => zones.map((zone, i) => ((zone.vines / all) * spreads[i]!) ** 2));
+  const problem: LeastCostProblem = {
+    costs: zones.map((zone) => zone.cost ?? 1),
+    minimum: zones.map((zone) => minimumOf({ ...zone, sd: 0 })),
+    maximum: zones.map((zone) => maximumOf({ ...zone, sd: 0 })),
+    terms,
+    limits: targets.map((target, j) => target + terms[j]!.reduce((sum, term, i) => sum + term / zones[i]!.vines, 0)),
+  };
+  return leastCostCounts(problem);
+}
+
+function varianceParts(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number[] {
+  const all = totalVines(zones);
+  return zones.map((zone, i) => ((zone.vines / all) * spreads[i]!) ** 2 * Math.max(0, 1 / counts[i]! - 1 / zone.vines));
+}
+
+function varianceOf(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number {
+  return varianceParts(zones, spreads, counts).reduce((sum, part) => sum + part, 0);
+}
+
+function degreesOfFreedom(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number {
+  const parts = varianceParts(zones, spreads, counts);
+  const variance = parts.reduce((sum, part) => sum + part, 0);
+  const below = parts.reduce((sum, part, i) => (part === 0 ? sum : sum + (part * part) / (counts[i]! - 1)), 0);
+  return below === 0 ? Infinity : (variance * variance) / below;
+}
+
+/**
+ * On a walk whose vines are fixed, each measure may need fewer of them: cheapest counts per measure that keep its own
+ * margin for the mean over zones, never more than the vines visited.
+ */
+export function trimToVisited(zones: readonly SharedZone[], measures: readonly MeasureDemand[], visited: readonly number[]): number[][] {
+  return measures.map((measure) => {
+    const limited = zones.map((zone, i) => ({ ...zone, cost: 1, maximum: visited[i]! }));
+    return [...leastCostForAll(limited, [measure]).counts];
+  });
+}

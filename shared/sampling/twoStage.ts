@@ -1,0 +1,119 @@
+import { AnalysisError } from '../analysis/analysisError.ts';
+import { ceilGuarded } from './sampleSize.ts';
+
+/**
+ * Vines, clusters on a vine, berries on a cluster: how to split the work.
+ * V = S_b²/n + S_w²/(nm) + S_e²/(nmk). Sources: Cochran 1977 ch. 10–11; de Gruijter et al. 2006, Sampling for
+ * Natural Resource Monitoring; Brus, Spatial Sampling with R, ch. 7; design effect Kish 1965.
+ * S_b is the true spread between vines, with the within part taken out; S_w and S_e likewise.
+ */
+
+/** 1 + (m − 1)ρ. Example: 5 clusters a vine, ρ 0.3 → 2.2. */
+export function designEffect(perVine: number, intraClass: number): number {
+  return 1 + (perVine - 1) * intraClass;
+}
+
+/** How many independent units n correlated ones are worth. A negative ρ is taken as 0 when planning. */
+export function effectiveUnits(units: number, perVine: number, intraClass: number): number {
+  return units / designEffect(perVine, Math.max(0, intraClass));
+}
+
+export interface StageVariances {
+  readonly betweenVines: number;
+  readonly withinVine: number;
+  /** Between berries of a cluster; 0 for two stages. */
+  readonly withinCluster?: number;
+}
+
+export interface StageCosts {
+  /** One more vine: walking to it and setting up. */
+  readonly perVine: number;
+  readonly perCluster: number;
+  readonly perBerry?: number;
+}
+
+export interface StageCounts {
+  readonly vines: number;
+  readonly perVine: number;
+  readonly perCluster?: number;
+}
+
+export function stageVariance(variances: StageVariances, { vines, perVine, perCluster = 1 }: StageCounts): number {
+  const { betweenVines, withinVine, withinCluster = 0 } = variances;
+  return betweenVines / vines + withinVine / (vines * perVine) + withinCluster / (vines * perVine * perCluster);
+}
+
+export function stageCost(costs: StageCosts, { vines, perVine, perCluster = 1 }: StageCounts): number {
+  return vines * (costs.perVine + perVine * (costs.perCluster + perCluster * (costs.perBerry ?? 0)));
+}
+
+/** (S_w/S_b)√(c_vine/c_cluster), unrounded. Example: spread ratio 1.2, 90 s and 8 s → 4.02 clusters a vine. */
+export function bestPerVine(spreadRatio: number, costs: StageCosts): number {
+  return spreadRatio * Math.sqrt(costs.perVine / costs.perCluster);
+}
+
+/** (S_e/S_w)√(c_cluster/c_berry), unrounded: berries a cluster. */
+export function bestPerCluster(variances: StageVariances, costs: StageCosts): number {
+  return Math.sqrt(((variances.withinCluster ?? 0) * costs.perCluster) / (variances.withinVine * (costs.perBerry ?? Number.NaN)));
+}
+
+export type StageTarget = { readonly variance: number } | { readonly budget: number };
+
+export interface StageSplit extends Required<StageCounts> {
+  readonly variance: number;
+  readonly cost: number;
+  /** Unrounded best numbers of the formula; perCluster is null for two stages. */
+  readonly best: { readonly perVine: number; readonly perCluster: number | null };
+}
+
+export interface SplitQuestion {
+  readonly variances: StageVariances;
+  readonly costs: StageCosts;
+  readonly target: StageTarget;
+  /** Clusters and berries there are to take. */
+  readonly maximumPerVine?: number;
+  readonly maximumPerCluster?: number;
+}
+
+/** Share by which a larger handful must be better to be preferred: the optimum is flat, and fewer per vine is easier. */
+const WORTH_IT = 0.01;
+
+/**
+ * Whole numbers near the optimum: least cost for a variance, or least variance for a budget; among near-equals the
+ * fewest clusters per vine, then the fewest berries. One cluster a vine when the formula says fewer than 1.5.
+ */
+export function bestSplit(question: SplitQuestion): StageSplit {
+  const { variances, costs, target } = question;
+  checkStages(question);
+  const threeStages = (variances.withinCluster ?? 0) > 0 && (costs.perBerry ?? 0) > 0;
+  const perVineBest = bestPerVine(Math.sqrt(variances.withinVine / variances.betweenVines), costs);
+  const perClusterBest = threeStages ? bestPerCluster(variances, costs) : null;
+  const best = { perVine: perVineBest, perCluster: perClusterBest };
+  const perVineChoices = perVineBest < 1.5 ? [1] : wholeAround(perVineBest, question.maximumPerVine ?? Infinity);
+  const perClusterChoices = perClusterBest === null ? [1] : wholeAround(perClusterBest, question.maximumPerCluster ?? Infinity);
+  const options = perVineChoices.flatMap((perVine) => perClusterChoices.flatMap((perCluster) => complete({ perVine, perCluster }, question, best)));
+  if (options.length === 0) throw new AnalysisError('budget_too_small', `A budget of ${'budget' in target ? target.budget : ''} does not pay for two vines. Allow at least ${2 * (costs.perVine + costs.perCluster)}.`);
+  const judged = (split: StageSplit) => ('budget' in target ? split.variance : split.cost);
+  return options.reduce((kept, next) => (judged(next) < judged(kept) * (1 - WORTH_IT) ? next : kept));
+}
+
+function checkStages({ variances, costs }: SplitQuestion): void {
+  if (!(variances.betweenVines > 0)) throw new AnalysisError('no_vine_spread', 'The spread between vines must be above 0; enter the estimate or a trade default.');
+  if (!(variances.withinVine >= 0)) throw new AnalysisError('bad_spread', `The spread within a vine must be 0 or more; got variance ${variances.withinVine}.`);
+  if (!(costs.perVine > 0 && costs.perCluster > 0)) throw new AnalysisError('bad_cost', 'The time per vine and per cluster must both be above 0.');
+}
+
+/** Whole numbers from the one below to the one above, within what there is. */
+function wholeAround(x: number, maximum: number): number[] {
+  const low = Math.max(1, Math.floor(x));
+  const candidates = [low - 1, low, low + 1].filter((n) => n >= 1 && n <= maximum);
+  return candidates.length > 0 ? candidates : [Math.max(1, maximum)];
+}
+
+function complete(counts: { perVine: number; perCluster: number }, { variances, costs, target }: SplitQuestion, best: StageSplit['best']): StageSplit[] {
+  const one = { vines: 1, ...counts };
+  const vines = 'budget' in target ? Math.floor(target.budget / stageCost(costs, one) + 1e-9) : Math.max(2, ceilGuarded(stageVariance(variances, one) / target.variance));
+  if (vines < 2) return [];
+  const split = { ...counts, vines };
+  return [{ ...split, variance: stageVariance(variances, split), cost: stageCost(costs, split), best }];
+}

@@ -1,0 +1,64 @@
+import { constants, inflateSync } from 'node:zlib';
+import { getDecoder } from 'geotiff';
+import { decodeLzw } from './lzw.ts';
+import { decodePackBits } from './packBits.ts';
+import { decodeXz } from './xz.ts';
+import { zstdUpperBound } from './zstdBound.ts';
+
+/** Unpacks one tile or strip into at most `size` bytes. */
+export type Unpack = (raw: Uint8Array<ArrayBuffer>, size: number) => Uint8Array<ArrayBuffer>;
+
+export interface Compression {
+  readonly name: string;
+  /** Null: known by name, but not read. */
+  readonly prepare: (() => Promise<Unpack>) | null;
+  /** Why it is not read. */
+  readonly reason?: string;
+}
+
+/** Some writers pad the last strip; more than this is no padding. */
+const PADDING = 65536;
+
+const lossy = 'it changes pixel values to save space';
+const picture = 'it is meant for pictures, not for measured values';
+
+const inflate: Unpack = (raw, size) => {
+  // The exact chunk size avoids pieces and their joining; the cap stops a stream that unpacks to far more than its tile.
+  // A sync flush at the end gives what there is of a stream cut short; the caller compares the length.
+  const out = inflateSync(raw, { chunkSize: Math.max(64, size), maxOutputLength: size + PADDING, finishFlush: constants.Z_SYNC_FLUSH });
+  return owned(out.length > size ? out.subarray(0, size) : out);
+};
+
+/** TIFF compression numbers and what becomes of them. */
+export const compressions: ReadonlyMap<number, Compression> = new Map<number, Compression>([
+  [1, { name: 'none', prepare: async () => (raw, size) => raw.subarray(0, size) }],
+  [2, { name: 'CCITT fax', prepare: null, reason: picture }],
+  [3, { name: 'CCITT fax', prepare: null, reason: picture }],
+  [4, { name: 'CCITT fax', prepare: null, reason: picture }],
+  [5, { name: 'LZW', prepare: async () => decodeLzw }],
+  [6, { name: 'old JPEG', prepare: null, reason: lossy }],
+  [7, { name: 'JPEG', prepare: null, reason: lossy }],
+  [8, { name: 'Deflate', prepare: async () => inflate }],
+  [32773, { name: 'PackBits', prepare: async () => decodePackBits }],
+  [32946, { name: 'Deflate', prepare: async () => inflate }],
+  [34712, { name: 'JPEG 2000', prepare: null, reason: lossy }],
+  [34887, { name: 'LERC', prepare: null, reason: 'no reader for it is part of this program' }],
+  [34925, { name: 'LZMA', prepare: async () => decodeXz }],
+  [50000, { name: 'ZSTD', prepare: prepareZstd }],
+  [50001, { name: 'WebP', prepare: null, reason: lossy }],
+  [50002, { name: 'JPEG XL', prepare: null, reason: lossy }],
+]);
+
+async function prepareZstd(): Promise<Unpack> {
+  const decoder = await getDecoder(50000, { tileWidth: 1, tileHeight: 1, predictor: 1, bitsPerSample: 8, planarConfiguration: 1 });
+  return (raw, size) => {
+    if (zstdUpperBound(raw) > 2 * size + 2 ** 20) throw new RangeError('Zstandard data unpack to more than their tile');
+    return owned(new Uint8Array(decoder.decodeBlock(raw.buffer) as ArrayBuffer)).subarray(0, size);
+  };
+}
+
+/** A view that starts at the beginning of its own buffer, so that typed arrays can be laid over it. */
+function owned(bytes: Uint8Array): Uint8Array<ArrayBuffer> {
+  if (bytes.byteOffset === 0 && bytes.buffer instanceof ArrayBuffer && bytes.byteLength === bytes.buffer.byteLength) return bytes as Uint8Array<ArrayBuffer>;
+  return new Uint8Array(bytes);
+}

@@ -1,0 +1,139 @@
+import type { LonLat } from '../../../shared/geo/coordinates.ts';
+import type { ByteSource } from '../byteSource.ts';
+import { withSource } from '../byteSource.ts';
+import { ImportProblem, naming } from '../importProblem.ts';
+import { referenceQuestion } from '../reference/candidates.ts';
+import { distanceKm } from '../reference/distance.ts';
+import { datumWarning, referenceFromAnswer, referenceFromText, toLonLat } from '../reference/referenceSystem.ts';
+import type { ImportQuestion, ImportWarning, PixelTransform, RasterUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
+import { readBands } from './bandTags.ts';
+import { referenceFromGeoKeys } from './geoKeyReference.ts';
+import { openRaster, type OpenRaster } from './openRaster.ts';
+import { outlineOf, placementOf, worldFileTransform } from './pixelTransform.ts';
+import { bandWarnings, verticalUnitOf } from './rasterWarnings.ts';
+
+export interface RasterReadOptions extends ReadOptions {
+  /** Text of the .tfw or .wld beside the file. */
+  worldFileText?: string | null;
+  /** Text of the .prj beside the file. */
+  projectionFileText?: string | null;
+}
+
+/** What a GeoTIFF says about itself, with the questions it leaves open. Reads tags only. Throws ImportProblem. */
+export function describeRaster(input: string | Uint8Array, options: RasterReadOptions): Promise<RasterUnderstood> {
+  return naming(options.fileName, () => withSource(input, (source) => describeSource(source, options)));
+}
+
+export async function describeSource(source: ByteSource, options: RasterReadOptions): Promise<RasterUnderstood> {
+  return describeOpen(await openRaster(source), options);
+}
+
+export function describeOpen(raster: OpenRaster, options: RasterReadOptions): RasterUnderstood {
+  const { layout, tags } = raster;
+  const questions: ImportQuestion[] = [];
+  const warnings: ImportWarning[] = [];
+  const { bands, alphaBand, ...bandNotes } = readBands(layout, tags);
+  const { transform, isPoint } = placeOf(raster, options, warnings);
+  const outline = outlineOf(transform, layout);
+  const reference = referenceOf(raster, { options, outline, questions, warnings });
+  const bounds = reference === null ? null : boundsOf(reference, { outline, options, questions });
+  warnings.push(...bandWarnings({ raster, ...bandNotes }));
+  const known = bounds === null ? null : reference;
+  return {
+    kind: 'raster',
+    width: layout.width,
+    height: layout.height,
+    bands,
+    alphaBand,
+    hasMask: raster.mask !== null,
+    reference: known,
+    epsg: known?.epsg ?? null,
+    crsName: reference?.name ?? null,
+    transform,
+    pixelSizeM: bounds === null ? null : pixelSizeM(bounds, layout),
+    boundsLonLat: bounds,
+    isPoint,
+    isRotated: Math.abs(transform[2]) + Math.abs(transform[4]) > 1e-9 * (Math.abs(transform[1]) + Math.abs(transform[5])),
+    compression: layout.compressionName,
+    overviewFactors: raster.overviews.map((overview) => Math.round((10 * layout.width) / overview.width) / 10),
+    verticalUnit: verticalUnitOf(tags.geoKeys),
+    captured: /^\d{4}:\d\d:\d\d/.test(tags.dateTime ?? '') ? tags.dateTime!.slice(0, 10).replaceAll(':', '-') : null,
+    questions,
+    warnings,
+  };
+}
+
+function placeOf(raster: OpenRaster, options: RasterReadOptions, warnings: ImportWarning[]): { transform: PixelTransform; isPoint: boolean } {
+  const placement = placementOf(raster.tags);
+  if (placement.kind === 'placed') {
+    if (placement.note === 'negative-scale') warnings.push({ code: 'negative-scale', text: 'Its pixel height is negative, which is unusual; the picture is taken as north up. Compare it with the block outline on the map.' });
+    if (placement.note === 'corner-points') warnings.push({ code: 'corner-points', text: 'It is placed by corner points; they fit a plain rectangle and are used as such.' });
+    return { transform: placement.transform, isPoint: placement.isPoint };
+  }
+  const fromWorldFile = options.worldFileText === undefined || options.worldFileText === null ? null : worldFileTransform(options.worldFileText);
+  if (fromWorldFile !== null) return { transform: fromWorldFile, isPoint: false };
+  const facts = {
+    none: 'It is a picture without a place: it has no map coordinates.',
+    'control-points': 'It is placed only by ground control points, which leaves its pixels bent.',
+    degenerate: 'Its pixels have no size: the numbers that place it on the map are damaged.',
+  };
+  throw new ImportProblem({
+    code: 'no-placement',
+    fact: facts[placement.reason],
+    remedy: placement.reason === 'control-points' ? 'Rectify it in the program that made it and export it again as GeoTIFF.' : 'Export it as GeoTIFF, or send its world file (.tfw) along with it.',
+    params: { reason: placement.reason },
+  });
+}
+
+interface ReferenceInputs {
+  options: RasterReadOptions;
+  outline: readonly [number, number][];
+  questions: ImportQuestion[];
+  warnings: ImportWarning[];
+}
+
+function referenceOf(raster: OpenRaster, { options, outline, questions, warnings }: ReferenceInputs): ReferenceSystem | null {
+  if (options.answers?.epsg !== undefined) return referenceFromAnswer(options.answers.epsg);
+  const said = referenceFromGeoKeys(raster.tags.geoKeys);
+  if (said.kind === 'known') {
+    if (said.assumedDatum) warnings.push({ code: 'assumed-datum', text: `${said.reference.name} does not name its datum; it is taken as WGS 84, which its ellipsoid suggests.`, params: { name: said.reference.name } });
+    const datum = datumWarning(said.reference);
+    if (datum !== null) warnings.push(datum);
+    return said.reference;
+  }
+  const text = options.answers?.projectionText ?? options.projectionFileText ?? null;
+  const fromText = text === null ? null : referenceFromText(text, 'projection file');
+  if (fromText !== null && !('reason' in fromText)) return fromText;
+  const why = said.kind === 'none' ? 'The file does not say which reference system its coordinates are in.' : `The file names "${said.name}", which cannot be used because ${said.reason}.`;
+  questions.push(referenceQuestion(outline, options.estateLonLat ?? null, why));
+  return null;
+}
+
+interface BoundsInputs {
+  outline: readonly [number, number][];
+  options: RasterReadOptions;
+  questions: ImportQuestion[];
+}
+
+/** Outline in degrees; null and a question when the numbers cannot be coordinates of the system the file names. */
+function boundsOf(reference: ReferenceSystem, { outline, options, questions }: BoundsInputs): LonLat[] | null {
+  const convert = toLonLat(reference);
+  const ring = outline.map(convert);
+  if (ring.every((lonLat) => lonLat !== null)) return ring;
+  const [x, y] = outline[0]!;
+  questions.push(referenceQuestion(outline, options.estateLonLat ?? null, `The file says it is in ${reference.name}, but its coordinates (${short(x)}, ${short(y)}) cannot be of that system.`));
+  return null;
+}
+
+/** Root of the mean pixel area, from the two middle lines of the outline. */
+function pixelSizeM(ring: readonly LonLat[], { width, height }: { width: number; height: number }): number {
+  const quarter = (ring.length - 1) / 4;
+  const corner = (side: number): LonLat => ring[side * quarter]!;
+  const across = distanceKm(corner(0), corner(1)) * 1000;
+  const down = distanceKm(corner(1), corner(2)) * 1000;
+  return Number(Math.sqrt((across / width) * (down / height)).toPrecision(6));
+}
+
+function short(value: number): string {
+  return String(Number(value.toPrecision(9)));
+}

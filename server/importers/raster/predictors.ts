@@ -1,0 +1,50 @@
+/*
+ * Undoing TIFF predictors in place. Predictor 2: TIFF 6.0, section 14 (differences of whole numbers, wrapping).
+ * Predictor 3: Adobe TIFF Technical Note 3 (bytes of floats sorted into planes, most significant first, then differences).
+ */
+
+type Wrapping = Uint8Array | Uint16Array | Uint32Array;
+
+/** Samples of one row, their distance to the left neighbour of the same band, and bytes of a sample. */
+export interface RowShape {
+  samplesPerRow: number;
+  stride: number;
+  bytesPerSample: number;
+}
+
+/** Predictor 2 over native-endian bytes. Typed arrays wrap by themselves, as the encoder did. */
+export function undoDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow, stride, bytesPerSample }: RowShape): void {
+  const count = Math.floor(bytes.byteLength / bytesPerSample);
+  if (bytesPerSample === 8) {
+    const wide = new BigUint64Array(bytes.buffer, bytes.byteOffset, count);
+    for (let row = 0; row < count; row += samplesPerRow) {
+      const end = Math.min(count, row + samplesPerRow);
+      for (let i = row + stride; i < end; i++) wide[i] = wide[i]! + wide[i - stride]!;
+    }
+    return;
+  }
+  const samples: Wrapping =
+    bytesPerSample === 1
+      ? bytes
+      : bytesPerSample === 2
+        ? new Uint16Array(bytes.buffer, bytes.byteOffset, count)
+        : new Uint32Array(bytes.buffer, bytes.byteOffset, count);
+  for (let row = 0; row < count; row += samplesPerRow) {
+    const end = Math.min(count, row + samplesPerRow);
+    for (let i = row + stride; i < end; i++) samples[i] = samples[i]! + samples[i - stride]!;
+  }
+}
+
+/** Predictor 3: returns native (little-endian) floats; the byte order of the file does not matter. */
+export function undoFloatDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow, stride, bytesPerSample }: RowShape): Uint8Array<ArrayBuffer> {
+  const rowBytes = samplesPerRow * bytesPerSample;
+  const out = new Uint8Array(bytes.byteLength);
+  for (let row = 0; row + rowBytes <= bytes.byteLength; row += rowBytes) {
+    for (let i = row + stride; i < row + rowBytes; i++) bytes[i] = bytes[i]! + bytes[i - stride]!;
+    for (let byte = 0; byte < bytesPerSample; byte++) {
+      const plane = row + (bytesPerSample - 1 - byte) * samplesPerRow;
+      for (let sample = 0, to = row + byte; sample < samplesPerRow; sample++, to += bytesPerSample) out[to] = bytes[plane + sample]!;
+    }
+  }
+  return out;
+}

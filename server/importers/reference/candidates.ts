@@ -1,0 +1,57 @@
+import { candidateCodes } from '../../../shared/geo/crsDefinitions.ts';
+import type { LonLat, RingLonLat } from '../../../shared/geo/coordinates.ts';
+import type { ImportQuestion, QuestionChoice } from '../understood.ts';
+import { distanceKm } from './distance.ts';
+import { referenceFromEpsg, toLonLat } from './referenceSystem.ts';
+
+/** Most answers shown at once, and how far from the estate a sensible one may lie. */
+const SHOWN = 8;
+const FARTHEST_KM = 400;
+/** Two systems that place the file this close together are one answer. */
+const SAME_PLACE_KM = 0.02;
+
+type XYPair = readonly [number, number];
+
+/**
+ * The question which reference system a file has: candidates by distance from the estate, each with the outline it
+ * would give. `outline` is in the file's own coordinates. Nothing is chosen here: the file alone cannot tell.
+ */
+export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonLat | null, why: string): ImportQuestion {
+  const choices = estateLonLat === null ? plausible(outline) : nearest(outline, estateLonLat);
+  return { code: 'reference-system', text: `${why} Which reference system are its coordinates in?`, choices };
+}
+
+function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
+  const found: (QuestionChoice & { distanceKm: number; centre: LonLat })[] = [];
+  for (const epsg of new Set(candidateCodes(estate))) {
+    const place = placeWith(outline, epsg);
+    if (place === null) continue;
+    const away = distanceKm(place.centre, estate);
+    if (away > FARTHEST_KM || found.some((other) => distanceKm(other.centre, place.centre) < SAME_PLACE_KM)) continue;
+    found.push({ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: away, centre: place.centre });
+  }
+  return found.sort((a, b) => a.distanceKm - b.distanceKm).slice(0, SHOWN).map(({ centre: _, ...choice }) => ({ ...choice, distanceKm: Math.round(choice.distanceKm * 10) / 10 }));
+}
+
+/** Without a place to compare with, only degrees can be recognised, by their size. */
+function plausible(outline: readonly XYPair[]): QuestionChoice[] {
+  return [4326, 3857].flatMap((epsg) => {
+    const place = placeWith(outline, epsg);
+    const looksLikeDegrees = outline.every(([x, y]) => Math.abs(x) <= 180 && Math.abs(y) <= 90);
+    return place === null || (epsg === 4326) !== looksLikeDegrees ? [] : [{ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: null }];
+  });
+}
+
+function placeWith(outline: readonly XYPair[], epsg: number): { name: string; outline: RingLonLat; centre: LonLat } | null {
+  const reference = referenceFromEpsg(epsg, 'answer');
+  if (reference === null) return null;
+  const convert = toLonLat(reference);
+  const ring: LonLat[] = [];
+  for (const position of outline) {
+    const lonLat = convert(position);
+    if (lonLat === null || Math.abs(lonLat[0]) > 180) return null;
+    ring.push(lonLat);
+  }
+  const middle = (axis: 0 | 1): number => (Math.min(...ring.map((p) => p[axis])) + Math.max(...ring.map((p) => p[axis]))) / 2;
+  return { name: reference.name, outline: ring, centre: [middle(0), middle(1)] };
+}

@@ -1,0 +1,60 @@
+import { AnalysisError } from '../analysis/analysisError.ts';
+import { planCounts, type PlanCounts, type PlanQuestion } from './planCounts.ts';
+
+/**
+ * The plan turned round: what can be known with this time, money or number of vines. All margins are widened or
+ * tightened by one factor, in the proportions the manager asked for, until the plan just fits. Because the counts
+ * come from the same function as the plan, both directions agree.
+ */
+export interface Budget {
+  readonly kind: 'hours' | 'vines' | 'money';
+  readonly value: number;
+}
+
+export type BudgetAnswer =
+  | {
+      readonly kind: 'plan';
+      /** Factor on every margin asked for: 1.4 means 40 % wider. */
+      readonly scale: number;
+      readonly plan: PlanCounts;
+      /** True when every eligible vine fits in the budget. */
+      readonly everyVine: boolean;
+    }
+  | { readonly kind: 'tooSmall'; /** What the plan costs at the zones' minimum, in the kind of the budget. */ readonly least: number };
+
+export function spent(plan: PlanCounts, kind: Budget['kind']): number {
+  if (kind === 'hours') return plan.hours;
+  return kind === 'vines' ? plan.visits : plan.money;
+}
+
+export function planForBudget(question: PlanQuestion, budget: Budget): BudgetAnswer {
+  if (!(budget.value > 0)) throw new AnalysisError('bad_budget', `The budget must be above 0; got ${budget.value}.`);
+  const found = smallestScale(question, (plan) => spent(plan, budget.kind) <= budget.value * (1 + 1e-12));
+  if (found === null) return { kind: 'tooSmall', least: spent(planCounts(scaleMargins(question, LARGEST)), budget.kind) };
+  return { kind: 'plan', ...found, everyVine: found.scale === SMALLEST };
+}
+
+const SMALLEST = 1e-6;
+const LARGEST = 1e6;
+
+/** Smallest factor on all margins whose plan fits, to 1e-7; null when even the minimum does not. Counts only fall as margins widen. */
+export function smallestScale(question: PlanQuestion, fits: (plan: PlanCounts) => boolean): { readonly scale: number; readonly plan: PlanCounts } | null {
+  const planAt = (scale: number) => planCounts(scaleMargins(question, scale));
+  let high = 1;
+  while (!fits(planAt(high))) {
+    high *= 4;
+    if (high > LARGEST) return null;
+  }
+  let low = high === 1 ? SMALLEST : high / 4;
+  if (low === SMALLEST && fits(planAt(SMALLEST))) return { scale: SMALLEST, plan: planAt(SMALLEST) };
+  while (high / low > 1 + 1e-7) {
+    const middle = Math.sqrt(high * low);
+    if (fits(planAt(middle))) high = middle;
+    else low = middle;
+  }
+  return { scale: high, plan: planAt(high) };
+}
+
+export function scaleMargins(question: PlanQuestion, scale: number): PlanQuestion {
+  return { ...question, measures: question.measures.map((measure) => ({ ...measure, margin: { ...measure.margin, value: measure.margin.value * scale } })) };
+}

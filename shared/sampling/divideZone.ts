@@ -1,0 +1,114 @@
+import { blockSampleSize } from './blockSampleSize.ts';
+import { groupVariance } from './pooling.ts';
+import { sampleSize } from './sampleSize.ts';
+import { moderateVariance } from './shrinkage.ts';
+import { pooledVariance, summarise, type VariancePart } from './variances.ts';
+
+/**
+ * Would a zone that asks for too many samples be cheaper as two? The cut is sought along one layer among the zone's
+ * readings. One degree of freedom is taken off for having chosen the best cut, and each side's spread is pulled
+ * towards the common one, so that chance does not pass for two populations.
+ */
+export interface LocatedReading {
+  readonly value: number;
+  /** Readings of different visits are compared only inside their visit. */
+  readonly visit: string;
+  /** Layer value at the vine. */
+  readonly layer: number;
+}
+
+export interface DivideQuestion {
+  readonly readings: readonly LocatedReading[];
+  /** Layer value at every vine of the zone. */
+  readonly layerAtVines: readonly number[];
+  readonly margin: number;
+  readonly confidence: number;
+  /** Count of the undivided zone, as the plan has it. */
+  readonly presentCount: number;
+  /** 'parts': each part must keep the margin; 'whole': only the mean of the present zone must. */
+  readonly wanted?: 'parts' | 'whole';
+  readonly kind?: 'sd' | 'cv';
+  readonly minimum?: number;
+}
+
+export interface Division {
+  /** Vines with a layer value up to this go to the first part. */
+  readonly cut: number;
+  readonly vines: readonly [number, number];
+  readonly spreads: readonly [number, number];
+  readonly counts: readonly [number, number];
+  readonly total: number;
+  /** Share of the present count saved; negative when the division costs more. */
+  readonly saving: number;
+  readonly recommended: boolean;
+}
+
+/** Share of the work that must be saved before dividing is advised. */
+export const WORTH_DIVIDING = 0.2;
+const MINIMUM_READINGS = 6;
+const MINIMUM_SHARE = 0.2;
+const PRIOR_DF = 6;
+
+/** Best division along the layer, or null with fewer than six readings on each side of every possible cut. */
+export function bestDivision(question: DivideQuestion): Division | null {
+  const sorted = [...new Set(question.readings.map(({ layer }) => layer))].sort((a, b) => a - b);
+  let best: Division | null = null;
+  for (let i = 1; i < sorted.length; i++) {
+    const division = divideAt((sorted[i - 1]! + sorted[i]!) / 2, question);
+    if (division !== null && (best === null || division.total < best.total)) best = division;
+  }
+  return best;
+}
+
+function divideAt(cut: number, question: DivideQuestion): Division | null {
+  const { readings, layerAtVines, margin, confidence, presentCount, wanted = 'parts', kind = 'sd', minimum } = question;
+  const sides = [readings.filter(({ layer }) => layer <= cut), readings.filter(({ layer }) => layer > cut)];
+  const below = layerAtVines.filter((layer) => layer <= cut).length;
+  const vines: [number, number] = [below, layerAtVines.length - below];
+  if (sides.some((side) => side.length < MINIMUM_READINGS)) return null;
+  if (Math.min(...vines) < MINIMUM_SHARE * layerAtVines.length) return null;
+  const own = sides.map((side) => withinVisits(side, kind));
+  const common = pooledVariance(own);
+  if (common.df <= 1) return null;
+  const prior = { variance: (common.variance * common.df) / (common.df - 1), df: Math.min(PRIOR_DF, common.df) };
+  const [first, second] = own.map((part) => Math.sqrt(moderateVariance(part, prior).variance)) as [number, number];
+  const spreads: [number, number] = [first, second];
+  const counts = countParts({ vines, spreads, margin, confidence, wanted, minimum });
+  const total = counts[0] + counts[1];
+  const saving = 1 - total / presentCount;
+  return { cut, vines, spreads, counts, total, saving, recommended: saving >= WORTH_DIVIDING };
+}
+
+function withinVisits(readings: readonly LocatedReading[], kind: 'sd' | 'cv'): VariancePart {
+  const visits = new Map<string, number[]>();
+  for (const { visit, value } of readings) visits.set(visit, [...(visits.get(visit) ?? []), value]);
+  return pooledVariance([...visits.values()].map((values) => groupVariance(values, kind)));
+}
+
+function countParts(parts: { vines: [number, number]; spreads: [number, number]; margin: number; confidence: number; wanted: 'parts' | 'whole'; minimum?: number }): [number, number] {
+  const { vines, spreads, margin, confidence, wanted, minimum } = parts;
+  if (wanted === 'whole') {
+    const zones = vines.map((count, i) => ({ vines: count, sd: spreads[i]!, minimum }));
+    const { counts } = blockSampleSize({ zones, margin, confidence, method: 'spread' });
+    return [counts[0]!, counts[1]!];
+  }
+  const n = vines.map((count, i) => sampleSize({ spread: spreads[i]!, margin, confidence, populationSize: count, minimum }).n);
+  return [n[0]!, n[1]!];
+}
+
+/** Spread of two zones taken as one: inside both, and between their means when they are known. */
+export function mergedSpread(parts: readonly { readonly vines: number; readonly sd: number; readonly mean: number | null }[]): number {
+  const vines = parts.reduce((sum, part) => sum + part.vines, 0);
+  const within = parts.reduce((sum, part) => sum + (part.vines / vines) * part.sd ** 2, 0);
+  const means = parts.map((part) => part.mean).filter((mean) => mean !== null);
+  if (means.length < parts.length) return Math.sqrt(within);
+  const centre = parts.reduce((sum, part) => sum + (part.vines / vines) * part.mean!, 0);
+  const between = parts.reduce((sum, part) => sum + (part.vines / vines) * (part.mean! - centre) ** 2, 0);
+  return Math.sqrt(within + between);
+}
+
+/** How far two parts differ in their means, for the sentence that explains a division. */
+export function partMeans(readings: readonly LocatedReading[], cut: number): readonly [number, number] {
+  const mean = (side: readonly LocatedReading[]) => summarise(side.map(({ value }) => value)).mean;
+  return [mean(readings.filter(({ layer }) => layer <= cut)), mean(readings.filter(({ layer }) => layer > cut))];
+}

@@ -1,0 +1,135 @@
+import { smallestScale } from './budget.ts';
+import { mergedSpread, type Division } from './divideZone.ts';
+import { matchMargin, type Margin } from './margins.ts';
+import { planCounts, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
+
+/**
+ * When a plan asks for more than a day's work or more vines than a zone should take, what would help, in figures.
+ * The limits are the manager's; 60 a zone is a common view of where little more is gained (French trade press).
+ */
+export interface PracticalLimits {
+  readonly visitsPerZone: number;
+  /** A day's hours; null for no limit. */
+  readonly hours: number | null;
+}
+
+export const DEFAULT_LIMITS: PracticalLimits = { visitsPerZone: 60, hours: null };
+
+interface Outcome {
+  readonly visits: number;
+  readonly hours: number;
+  /** Share of the vines visited that the option saves. */
+  readonly saving: number;
+  /** True when the option brings the plan inside the limits. */
+  readonly fits: boolean;
+}
+
+export type ImpracticalOption =
+  | (Outcome & { readonly kind: 'widerMargin'; readonly scale: number; readonly margins: readonly { readonly code: string; readonly margin: Margin }[] })
+  | (Outcome & { readonly kind: 'lowerConfidence'; readonly confidence: number })
+  | (Outcome & { readonly kind: 'poolZones'; readonly zones: readonly [string, string] })
+  | (Outcome & { readonly kind: 'divideZone'; readonly zone: string; readonly division: Division; readonly recommended: boolean });
+
+export interface ImpracticalAdvice {
+  readonly zonesOver: readonly string[];
+  readonly hoursOver: boolean;
+  readonly options: readonly ImpracticalOption[];
+}
+
+export interface AdviceQuestion {
+  readonly question: PlanQuestion;
+  readonly plan: PlanCounts;
+  readonly limits?: PracticalLimits;
+  /** Confidence levels to fall back on, any order. */
+  readonly confidences: readonly number[];
+  /** Best division of zones for which one could be sought (`bestDivision`, on the zone's driving measure). */
+  readonly divisions?: readonly { readonly zone: string; readonly division: Division }[];
+}
+
+/** Null when the plan is within its limits. */
+export function adviseImpractical(ask: AdviceQuestion): ImpracticalAdvice | null {
+  const { question, plan, limits = DEFAULT_LIMITS } = ask;
+  const zonesOver = plan.zones.filter((zone) => zone.visits > limits.visitsPerZone).map(({ zone }) => zone);
+  const hoursOver = limits.hours !== null && plan.hours > limits.hours;
+  if (zonesOver.length === 0 && !hoursOver) return null;
+  const judge = (other: PlanCounts): Outcome => ({ visits: other.visits, hours: other.hours, saving: 1 - other.visits / plan.visits, fits: isPractical(other, limits) });
+  const options = [widerMargin(question, limits, judge), lowerConfidence(ask, judge), poolZones(question, zonesOver, judge), ...divided(ask, zonesOver)];
+  return { zonesOver, hoursOver, options: options.filter((option) => option !== null) };
+}
+
+export function isPractical(plan: PlanCounts, limits: PracticalLimits): boolean {
+  return plan.zones.every((zone) => zone.visits <= limits.visitsPerZone) && (limits.hours === null || plan.hours <= limits.hours);
+}
+
+type Judge = (plan: PlanCounts) => Outcome;
+
+function widerMargin(question: PlanQuestion, limits: PracticalLimits, judge: Judge): ImpracticalOption | null {
+  const found = smallestScale(question, (plan) => isPractical(plan, limits));
+  if (found === null) return null;
+  const margins = question.measures.map(({ code, margin }) => ({ code, margin: { ...margin, value: margin.value * found.scale } }));
+  return { kind: 'widerMargin', scale: found.scale, margins, ...judge(found.plan) };
+}
+
+/** The highest lower level that fits; when none does, the lowest. */
+function lowerConfidence({ question, confidences }: AdviceQuestion, judge: Judge): ImpracticalOption | null {
+  const highest = Math.max(...question.measures.map(({ confidence }) => confidence));
+  const lower = [...confidences].filter((level) => level < highest).sort((a, b) => b - a);
+  let option: ImpracticalOption | null = null;
+  for (const level of lower) {
+    const measures = question.measures.map((measure) => ({ ...measure, confidence: Math.min(measure.confidence, level) }));
+    option = { kind: 'lowerConfidence', confidence: level, ...judge(planCounts({ ...question, measures })) };
+    if (option.fits) break;
+  }
+  return option;
+}
+
+/** The pair with a zone over its limit whose union needs the fewest vines. */
+function poolZones(question: PlanQuestion, zonesOver: readonly string[], judge: Judge): ImpracticalOption | null {
+  let best: ImpracticalOption | null = null;
+  question.zones.forEach((first, i) => {
+    question.zones.slice(i + 1).forEach((second, offset) => {
+      if (zonesOver.length > 0 && !zonesOver.includes(first.zone) && !zonesOver.includes(second.zone)) return;
+      const outcome = judge(planCounts(mergeZones(question, i, i + 1 + offset)));
+      if (best === null || outcome.visits < best.visits) best = { kind: 'poolZones', zones: [first.zone, second.zone], ...outcome };
+    });
+  });
+  return best;
+}
+
+/** The question with two zones taken as one, their spread widened by the difference of their means. */
+export function mergeZones(question: PlanQuestion, i: number, j: number): PlanQuestion {
+  const [first, second] = [question.zones[i]!, question.zones[j]!];
+  const others = <T>(items: readonly T[]) => items.filter((_, at) => at !== i && at !== j);
+  const merged = { zone: `${first.zone} + ${second.zone}`, vines: first.vines + second.vines, eligibleVines: (first.eligibleVines ?? first.vines) + (second.eligibleVines ?? second.vines) };
+  const measures = question.measures.map((measure) => mergeMeasure(measure, [i, j], [first.vines, second.vines], others));
+  return { ...question, zones: [...others(question.zones), merged], measures };
+}
+
+function mergeMeasure(measure: PlanMeasure, pair: readonly [number, number], vines: readonly [number, number], others: <T>(items: readonly T[]) => T[]): PlanMeasure {
+  const means = pair.map((at) => measure.expectedMeans[at]!);
+  const [meanA, meanB] = means as [number | null, number | null];
+  const mean = meanA === null || meanB === null ? null : (meanA * vines[0] + meanB * vines[1]) / (vines[0] + vines[1]);
+  const kind = measure.spreads[pair[0]]!.kind;
+  // Without means, spreads that are shares are pooled as shares: nothing is known of a difference.
+  const asShares = kind === 'cv' && mean === null;
+  const parts = pair.map((at, side) => {
+    const sd = asShares ? measure.spreads[at]!.value : matchMargin(measure.spreads[at]!, { kind: 'absolute', value: 1 }, means[side]!).spread;
+    return { vines: vines[side]!, sd, mean: asShares ? null : means[side]! };
+  });
+  const sd = mergedSpread(parts);
+  const value = kind === 'cv' && mean !== null ? sd / Math.abs(mean) : sd;
+  return { ...measure, spreads: [...others(measure.spreads), { kind, value }], expectedMeans: [...others(measure.expectedMeans), mean] };
+}
+
+function divided({ plan, divisions = [], limits = DEFAULT_LIMITS }: AdviceQuestion, zonesOver: readonly string[]): ImpracticalOption[] {
+  return divisions
+    .filter(({ zone }) => zonesOver.includes(zone))
+    .map(({ zone, division }) => {
+      const present = plan.zones.find((candidate) => candidate.zone === zone)!;
+      const visits = plan.visits - present.visits + division.total;
+      const hours = plan.hours - present.hours * (1 - division.total / present.visits);
+      const othersFit = plan.zones.every((other) => other.zone === zone || other.visits <= limits.visitsPerZone);
+      const fits = othersFit && Math.max(...division.counts) <= limits.visitsPerZone && (limits.hours === null || hours <= limits.hours);
+      return { kind: 'divideZone', zone, division, recommended: division.recommended, visits, hours, saving: 1 - visits / plan.visits, fits };
+    });
+}

@@ -1,0 +1,206 @@
+import { AnalysisError } from '../analysis/analysisError.ts';
+import { allocationMethods, type AllocationMethodId } from './allocationMethods.ts';
+import { blockPrecision, blockSampleSize } from './blockSampleSize.ts';
+import { matchMargin, type Margin, type MatchedMargin, type Spread } from './margins.ts';
+import { ADVISED_MINIMUM, halfWidth } from './sampleSize.ts';
+import { everyZoneCounts, leastCostForAll, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
+
+/**
+ * Counts, hours and precision of a whole plan: several zones, several measures, one walk.
+ * In: zones with vines, measures with margins and planning spreads. Out: vines to visit and samples per measure in
+ * each zone, what drives them, and the half-width each will have if the spreads are as assumed.
+ * Cost: well under a millisecond per zone and measure, so the browser can call it while a slider moves.
+ */
+export interface PlanZone {
+  readonly zone: string;
+  /** Bearing vines, which the mean speaks for. */
+  readonly vines: number;
+  /** Vines that may be drawn (edge rows and the like left out); all of them when left out. */
+  readonly eligibleVines?: number;
+}
+
+export interface PlanMeasure {
+  readonly code: string;
+  readonly margin: Margin;
+  readonly confidence: number;
+  /** One per zone, in the order of the zones. */
+  readonly spreads: readonly Spread[];
+  readonly expectedMeans: readonly (number | null)[];
+  readonly secondsPerSample: number;
+  readonly moneyPerSample?: number;
+}
+
+export interface PlanEffort {
+  /** Walking to a vine and setting up, shared by all measures taken there. */
+  readonly secondsPerVine: number;
+  readonly secondsPerZone?: number;
+  readonly moneyPerHour?: number;
+}
+
+export interface PlanQuestion {
+  readonly zones: readonly PlanZone[];
+  readonly measures: readonly PlanMeasure[];
+  /** Must each zone's own mean keep the margin, or the mean over all zones? */
+  readonly question: 'eachZone' | 'block';
+  /** How samples are shared when the question is about the block. */
+  readonly method?: AllocationMethodId | 'leastCost';
+  readonly effort: PlanEffort;
+  /** Samples per zone and measure that the plan does not go below. */
+  readonly minimum?: number;
+}
+
+export interface PlannedZone {
+  readonly zone: string;
+  /** Vines to visit. */
+  readonly visits: number;
+  /** Samples by measure, in the order of the measures. */
+  readonly counts: readonly number[];
+  /** Measures that ask for the visits; empty when the floor does. */
+  readonly drivers: readonly string[];
+  /** On the scale of each measure's margin (unit, or share of the mean). NaN below two samples. */
+  readonly halfWidths: readonly number[];
+  readonly hours: number;
+}
+
+export interface PlannedMeasure {
+  readonly code: string;
+  readonly samples: number;
+  /** Half-width of the mean over all zones, on the scale of the margin. */
+  readonly blockHalfWidth: number;
+  /** False when all eligible vines miss the margin that was asked for. */
+  readonly reached: boolean;
+}
+
+export interface PlanCounts {
+  readonly zones: readonly PlannedZone[];
+  readonly measures: readonly PlannedMeasure[];
+  readonly visits: number;
+  readonly hours: number;
+  readonly money: number;
+  /** Measures that decide the total, the heaviest first. */
+  readonly drivers: readonly string[];
+}
+
+interface Draft {
+  readonly visits: readonly number[];
+  /** Measure × zone. */
+  readonly counts: readonly (readonly number[])[];
+  readonly zoneDrivers: readonly (readonly string[])[];
+  readonly drivers: readonly string[];
+}
+
+export function planCounts(question: PlanQuestion): PlanCounts {
+  checkQuestion(question);
+  const draft = question.question === 'eachZone' ? draftEachZone(question) : draftBlock(question);
+  return measureUp(question, draft);
+}
+
+function checkQuestion({ zones, measures }: PlanQuestion): void {
+  if (zones.length === 0) throw new AnalysisError('no_zones', 'A plan needs at least one zone.');
+  if (measures.length === 0) throw new AnalysisError('no_measures', 'A plan needs at least one measure.');
+  for (const measure of measures) {
+    if (measure.spreads.length !== zones.length || measure.expectedMeans.length !== zones.length) {
+      throw new AnalysisError('spread_missing', `Measure "${measure.code}" has spreads for ${measure.spreads.length} zones; the plan has ${zones.length}.`);
+    }
+  }
+}
+
+function eligible(zone: PlanZone): number {
+  return Math.min(zone.vines, zone.eligibleVines ?? zone.vines);
+}
+
+function sharedZones(question: PlanQuestion, measures: readonly PlanMeasure[]): SharedZone[] {
+  const seconds = question.effort.secondsPerVine + measures.reduce((sum, measure) => sum + measure.secondsPerSample, 0);
+  return question.zones.map((zone) => ({ vines: zone.vines, cost: seconds, minimum: question.minimum ?? ADVISED_MINIMUM, maximum: eligible(zone) }));
+}
+
+function draftEachZone(question: PlanQuestion): Draft {
+  const { zones, measures } = question;
+  const perMeasure = measures.map((measure) =>
+    zones.map((zone, i) => {
+      const matched = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
+      const demand: MeasureDemand = { code: measure.code, spreads: [matched.spread], margin: matched.margin, confidence: measure.confidence };
+      const [answer] = everyZoneCounts([{ vines: zone.vines, minimum: question.minimum ?? ADVISED_MINIMUM }], [demand]);
+      return { n: Math.min(answer!.n, eligible(zone)), byFloor: answer!.driver === null };
+    }),
+  );
+  const counts = perMeasure.map((row) => row.map(({ n }) => n));
+  const visits = zones.map((_, i) => Math.max(...counts.map((row) => row[i]!)));
+  const zoneDrivers = zones.map((_, i) => measures.filter((_measure, j) => counts[j]![i] === visits[i] && !perMeasure[j]![i]!.byFloor).map(({ code }) => code));
+  return { visits, counts, zoneDrivers, drivers: heaviestFirst(measures, zoneDrivers, visits) };
+}
+
+/** Measures by the number of vines they ask for. */
+function heaviestFirst(measures: readonly PlanMeasure[], zoneDrivers: readonly (readonly string[])[], visits: readonly number[]): string[] {
+  const weights = measures.map(({ code }) => ({ code, vines: visits.reduce((sum, n, i) => (zoneDrivers[i]!.includes(code) ? sum + n : sum), 0) }));
+  return weights.filter(({ vines }) => vines > 0).sort((a, b) => b.vines - a.vines).map(({ code }) => code);
+}
+
+/** Spreads and margin of a measure on one scale for all zones together. */
+function blockDemand(measure: PlanMeasure, zones: readonly PlanZone[]): MeasureDemand {
+  const { code, margin, confidence, spreads, expectedMeans } = measure;
+  const sharesOnly = margin.kind === 'relative' && spreads.every(({ kind }) => kind === 'cv') && expectedMeans.includes(null);
+  if (sharesOnly) return { code, spreads: spreads.map(({ value }) => value), margin: margin.value, confidence };
+  const absolute: Margin = { kind: 'absolute', value: 1 };
+  const inUnits = spreads.map((spread, i) => matchMargin(spread, absolute, expectedMeans[i]!).spread);
+  if (margin.kind === 'absolute') return { code, spreads: inUnits, margin: margin.value, confidence };
+  const vines = zones.reduce((sum, zone) => sum + zone.vines, 0);
+  const mean = expectedMeans.includes(null) ? null : zones.reduce((sum, zone, i) => sum + (zone.vines / vines) * expectedMeans[i]!, 0);
+  return { code, spreads: inUnits, margin: matchMargin({ kind: 'sd', value: 0 }, margin, mean).margin, confidence };
+}
+
+function draftBlock(question: PlanQuestion): Draft {
+  const { zones, measures, method = 'leastCost' } = question;
+  const demands = measures.map((measure) => blockDemand(measure, zones));
+  const shared = sharedZones(question, measures);
+  if (method === 'leastCost') {
+    const answer = leastCostForAll(shared, demands);
+    const zoneDrivers = zones.map((_, i) => (answer.counts[i]! > Math.min(shared[i]!.minimum!, shared[i]!.maximum!) ? answer.binding : []));
+    return { visits: answer.counts, counts: trimToVisited(shared, demands, answer.counts), zoneDrivers, drivers: answer.binding };
+  }
+  const answers = demands.map((demand) => {
+    const priced = shared.map((zone, i) => ({ ...zone, sd: demand.spreads[i]! }));
+    return blockSampleSize({ zones: priced, margin: demand.margin, confidence: demand.confidence, method });
+  });
+  const counts = answers.map((answer) => answer.counts);
+  const visits = zones.map((_, i) => Math.max(...counts.map((row) => row[i]!)));
+  const zoneDrivers = zones.map((_, i) => measures.filter((_measure, j) => counts[j]![i] === visits[i] && !answers[j]!.atMinimum).map(({ code }) => code));
+  return { visits, counts, zoneDrivers, drivers: heaviestFirst(measures, zoneDrivers, visits) };
+}
+
+/** Hours, money and the half-widths that the counts will give. */
+function measureUp(question: PlanQuestion, draft: Draft): PlanCounts {
+  const { zones, measures, effort } = question;
+  const planned = zones.map((zone, i): PlannedZone => {
+    const counts = draft.counts.map((row) => row[i]!);
+    const sampling = measures.reduce((sum, measure, j) => sum + measure.secondsPerSample * counts[j]!, 0);
+    const seconds = (effort.secondsPerZone ?? 0) + effort.secondsPerVine * draft.visits[i]! + sampling;
+    const halfWidths = measures.map((measure, j) => zoneHalfWidth(measure, { zone, i, n: counts[j]! }));
+    return { zone: zone.zone, visits: draft.visits[i]!, counts, drivers: draft.zoneDrivers[i]!, halfWidths, hours: seconds / 3600 };
+  });
+  const hours = planned.reduce((sum, zone) => sum + zone.hours, 0);
+  const inMeasure = measures.map((measure, j): PlannedMeasure => {
+    const samples = draft.counts[j]!.reduce((sum, n) => sum + n, 0);
+    const blockHalfWidth = halfWidthOfBlock(measure, zones, draft.counts[j]!);
+    const widest = question.question === 'block' ? blockHalfWidth : Math.max(...planned.map((zone) => zone.halfWidths[j]!));
+    return { code: measure.code, samples, blockHalfWidth, reached: widest <= measure.margin.value * (1 + 1e-9) };
+  });
+  const money = hours * (effort.moneyPerHour ?? 0) + measures.reduce((sum, measure, j) => sum + (measure.moneyPerSample ?? 0) * inMeasure[j]!.samples, 0);
+  return { zones: planned, measures: inMeasure, visits: draft.visits.reduce((sum, n) => sum + n, 0), hours, money, drivers: draft.drivers };
+}
+
+function zoneHalfWidth(measure: PlanMeasure, { zone, i, n }: { zone: PlanZone; i: number; n: number }): number {
+  const matched: MatchedMargin = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
+  const width = halfWidth({ spread: matched.spread, n, confidence: measure.confidence, populationSize: zone.vines });
+  // `matched.margin` may be in units while the margin is a share: back to the scale of the margin.
+  return (width * measure.margin.value) / matched.margin;
+}
+
+function halfWidthOfBlock(measure: PlanMeasure, zones: readonly PlanZone[], counts: readonly number[]): number {
+  const demand = blockDemand(measure, zones);
+  const priced = zones.map((zone, i) => ({ vines: zone.vines, sd: demand.spreads[i]! }));
+  return (blockPrecision(priced, counts, { confidence: measure.confidence }).halfWidth * measure.margin.value) / demand.margin;
+}
+
+/** Ids that a plan for a block may name. */
+export const planMethods: readonly (AllocationMethodId | 'leastCost')[] = ['leastCost', ...allocationMethods.map(({ id }) => id)];

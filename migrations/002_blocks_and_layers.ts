@@ -2,6 +2,8 @@ import type { Knex } from 'knex';
 
 /**
  * Blocks with rows and known vines; uploaded files, what was understood of them, and layers on block grids.
+ * An ordinal of a vine may be 0 or less: a row lengthened at its start end keeps the numbers of the vines it had.
+ * An import that was refused has no file: only its name and the reason are kept.
  * Keys below an estate are (estate_id, id), so that the database itself refuses a reference across estates.
  */
 export async function up(knex: Knex): Promise<void> {
@@ -20,15 +22,20 @@ export async function up(knex: Knex): Promise<void> {
       row_bearing_deg double precision not null default 0 check (row_bearing_deg >= 0 and row_bearing_deg < 360),
       row_spacing_m double precision not null default 2.5 check (row_spacing_m between 0.5 and 12),
       vine_spacing_m double precision not null default 1.2 check (vine_spacing_m between 0.2 and 12),
+      row_count int check (row_count between 1 and 20000),
       headland_m double precision not null default 0 check (headland_m between 0 and 50),
       row_one_side text not null default 'low' check (row_one_side in ('low', 'high')),
       vine_one_end text not null default 'start' check (vine_one_end in ('start', 'end')),
+      first_row_label int not null default 1 check (first_row_label between 0 and 100000),
       start_post_colour text not null default 'white',
       end_post_colour text not null default 'red',
       gate geometry(Point, 4326),
       cell_size_m double precision not null default 2 check (cell_size_m between 0.5 and 30),
+      grid_key text not null,
       trellis text not null default '',
       notes text not null default '',
+      census text not null default 'unknown' check (census in ('unknown', 'partial', 'full')),
+      census_at timestamptz,
       version int not null default 1,
       retired_at timestamptz,
       created_at timestamptz not null default now(),
@@ -58,7 +65,7 @@ export async function up(knex: Knex): Promise<void> {
       estate_id uuid not null,
       block_id uuid not null,
       row_id uuid not null,
-      ordinal int not null check (ordinal >= 1),
+      ordinal int not null,
       state text not null check (state in ('missing', 'dead', 'replant', 'offType', 'sick')),
       proposed boolean not null default false,
       noted_by uuid references people (id),
@@ -83,7 +90,8 @@ export async function up(knex: Knex): Promise<void> {
     create table imports (
       id uuid primary key default gen_random_uuid(),
       estate_id uuid not null,
-      file_id uuid not null,
+      file_id uuid,
+      file_name text not null,
       format text not null default '',
       state text not null check (state in ('reading', 'asks', 'ready', 'done', 'refused')),
       understood jsonb not null default '{}',
@@ -91,6 +99,7 @@ export async function up(knex: Knex): Promise<void> {
       answers jsonb not null default '{}',
       warnings jsonb not null default '[]',
       problem jsonb,
+      retired_at timestamptz,
       created_by uuid references people (id),
       created_at timestamptz not null default now(),
       finished_at timestamptz,

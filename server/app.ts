@@ -12,6 +12,7 @@ import { makePassport } from './access/signIn.ts';
 import type { Config } from './config.ts';
 import { Missing, problemOf } from './errors.ts';
 import { log } from './log.ts';
+import { blockRoutes } from './routes/blocks.ts';
 import { describedApi } from './routes/openapi.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { jobRoutes } from './routes/jobs.ts';
@@ -79,7 +80,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
-  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes());
+  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes());
   return router;
 }
 

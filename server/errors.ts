@@ -42,6 +42,13 @@ export class Clash extends ExpectedError {}
 /** Somebody changed the thing since it was read; `extra.current` holds its new state where that helps. */
 export class Stale extends ExpectedError {}
 
+/** A change of something that two people can edit came without saying which version it was made on. */
+export class Unconditional extends ExpectedError {
+  constructor() {
+    super('noVersion', 'Say which version this change was made on: send the ETag that you read as If-Match.');
+  }
+}
+
 /** Readable but unusable input. */
 export class Unusable extends ExpectedError {}
 
@@ -75,6 +82,7 @@ const table = [
   row(Missing, 404, 'Not found', said),
   row(Clash, 409, 'Clash', said),
   row(Stale, 412, 'Changed meanwhile', said),
+  row(Unconditional, 428, 'Version needed', said),
   row(TooMuch, 429, 'Too much', said),
   row(Unusable, 422, 'Cannot be used', said),
   row(AnalysisError, 422, 'Cannot be computed', (error) => ({ code: error.code, detail: error.message })),

@@ -1,4 +1,5 @@
 import type { MultiPolygon, Point } from 'geojson';
+import type { PostColour } from '../../shared/contracts/blocks.ts';
 import { EstateModel } from './BaseModel.ts';
 
 export class Block extends EstateModel {
@@ -15,15 +16,20 @@ export class Block extends EstateModel {
   declare rowBearingDeg: number;
   declare rowSpacingM: number;
   declare vineSpacingM: number;
+  declare rowCount: number | null;
   declare headlandM: number;
   declare rowOneSide: 'low' | 'high';
   declare vineOneEnd: 'start' | 'end';
-  declare startPostColour: string;
-  declare endPostColour: string;
+  declare firstRowLabel: number;
+  declare startPostColour: PostColour;
+  declare endPostColour: PostColour;
   declare gate: Point | null;
   declare cellSizeM: number;
+  declare gridKey: string;
   declare trellis: string;
   declare notes: string;
+  declare census: 'unknown' | 'partial' | 'full';
+  declare censusAt: Date | null;
   declare version: number;
   declare retiredAt: Date | null;
   declare createdAt: Date;

@@ -1,0 +1,44 @@
+import { withSource } from '../byteSource.ts';
+import { ImportProblem, naming } from '../importProblem.ts';
+import { farWarning } from '../reference/farFromEstate.ts';
+import type { ImportQuestion, ImportWarning, RasterUnderstood } from '../understood.ts';
+import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
+import { openRaster } from './openRaster.ts';
+import { previewOpen, type RasterPreview } from './previewRaster.ts';
+import { checkValues } from './valueChecks.ts';
+
+export interface RasterInspection {
+  understood: RasterUnderstood;
+  preview: RasterPreview;
+}
+
+/**
+ * Tags and values together: what `describeRaster` says, plus what a look at the pixels adds. A value that looks like an
+ * unmarked "missing" becomes a question. Throws ImportProblem, `no-values` when every pixel is missing.
+ */
+export function inspectRaster(input: string | Uint8Array, options: RasterReadOptions): Promise<RasterInspection> {
+  return naming(options.fileName, () =>
+    withSource(input, async (source) => {
+      const raster = await openRaster(source);
+      const described = describeOpen(raster, options);
+      const preview = await previewOpen(raster, described, { noData: options.answers?.noData });
+      const questions: ImportQuestion[] = [...described.questions];
+      const warnings: ImportWarning[] = [...described.warnings];
+      if (preview.bands.every(({ values }) => values.every(Number.isNaN))) {
+        throw new ImportProblem({ code: 'no-values', fact: 'It has no values: every pixel is marked as missing.', remedy: 'Check that it is the right file, and that its mark for missing values is right.' });
+      }
+      for (const band of preview.bands) {
+        const found = checkValues(band, described.bands.find(({ index }) => index === band.index)!, { noDataAnswered: options.answers?.noData !== undefined, bands: preview.bands.length });
+        questions.push(...found.questions);
+        warnings.push(...found.warnings);
+      }
+      if (described.boundsLonLat !== null) warnings.push(...farWarning(described.boundsLonLat, options.estateLonLat ?? null));
+      return { understood: { ...described, questions: onePerCode(questions), warnings }, preview };
+    }),
+  );
+}
+
+/** Bands of one file share their mark for missing values: one question serves all. */
+function onePerCode(questions: readonly ImportQuestion[]): ImportQuestion[] {
+  return questions.filter((question, i) => questions.findIndex(({ code }) => code === question.code) === i);
+}

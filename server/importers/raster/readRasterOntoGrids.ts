@@ -1,0 +1,150 @@
+import type { Grid } from '../../../shared/analysis/grid.ts';
+import { INDICES, indexCells, type BandName, type IndexId } from '../../../shared/analysis/indices.ts';
+import { resampler, type ResampleMethod, type WindowedSink } from '../../../shared/analysis/resample.ts';
+import type { RasterFrame } from '../../../shared/analysis/resampleFrame.ts';
+import { CellSums } from '../../../shared/analysis/resampleSums.ts';
+import { fromUtm } from '../../../shared/geo/utm.ts';
+import { withSource } from '../byteSource.ts';
+import { ImportProblem, naming } from '../importProblem.ts';
+import { limits } from '../limits.ts';
+import { distanceKm } from '../reference/distance.ts';
+import { reprojectionTo } from '../reference/referenceSystem.ts';
+import type { RasterUnderstood } from '../understood.ts';
+import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
+import { openRaster } from './openRaster.ts';
+import { openPicture, type PictureReader } from './pictureBlocks.ts';
+import { at } from './pixelTransform.ts';
+
+/** What to take from the file: one band, or an index of bands, which are averaged first. Bands count from 1. */
+export type RasterQuantity =
+  | { readonly kind: 'band'; readonly band: number; readonly method: ResampleMethod }
+  | { readonly kind: 'index'; readonly index: IndexId; readonly bands: Partial<Record<BandName, number>> };
+
+export interface RasterOntoGridsRequest {
+  readonly quantity: RasterQuantity;
+  readonly grids: readonly Grid[];
+  /** Number that means "no data" instead of the file's own; null: every value counts; undefined: as the file says. */
+  readonly noData?: number | null;
+  /** Cells with a smaller share under pixels with data are missing. */
+  readonly minCoverage?: number;
+  /** Part done, 0…1. */
+  readonly onProgress?: (done: number) => void;
+  readonly signal?: AbortSignal;
+}
+
+export interface GridReading {
+  readonly gridKey: string;
+  /** Value per cell, NaN where missing. */
+  readonly cells: Float32Array;
+  /** Share of each cell under pixels with data, 0…1. */
+  readonly covered: Float32Array;
+  /** The picture reaches this grid at all. */
+  readonly reaches: boolean;
+}
+
+/**
+ * Reads a raster onto the grids of several blocks in one pass, tile by tile, only where blocks lie; memory does not grow
+ * with the picture. Throws ImportProblem: an open reference question, no overlap (with the distance), all missing, damage.
+ */
+export function readRasterOntoGrids(input: string | Uint8Array, options: RasterReadOptions, request: RasterOntoGridsRequest): Promise<GridReading[]> {
+  return naming(options.fileName, () =>
+    withSource(input, async (source) => {
+      const raster = await openRaster(source);
+      const understood = describeOpen(raster, options);
+      const bands = bandsOf(request.quantity, understood);
+      const noData = bands.map((index) => (request.noData === undefined ? (understood.bands.find((band) => band.index === index)!.noData) : request.noData));
+      const sinks = request.grids.map((grid) => sinkOf(grid, understood, { method: request.quantity.kind === 'band' ? request.quantity.method : 'mean', bands: bands.length, noData }));
+      if (sinks.every((sink) => sink.window === null)) throw notOverlapping(understood, request.grids);
+      const unmarked = noData[0] === null;
+      const reader = await openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: true, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });
+      await feed(reader, sinks, request);
+      const readings = request.grids.map((grid, at) => finish(grid, sinks[at]!, { understood, bands, request }));
+      if (readings.every(({ cells }) => cells.every(Number.isNaN))) throw noValues(readings.length);
+      return readings;
+    }),
+  );
+}
+
+/** Band numbers to read, in the order of the index's formula. */
+function bandsOf(quantity: RasterQuantity, understood: RasterUnderstood): number[] {
+  const wanted = quantity.kind === 'band' ? [['value', quantity.band] as const] : INDICES[quantity.index].bands.map((name) => [name, quantity.bands[name]] as const);
+  return wanted.map(([name, band]) => {
+    if (band !== undefined && understood.bands.some((each) => each.index === band)) return band;
+    const listed = understood.bands.map((each) => each.index).join(', ');
+    throw new ImportProblem({ code: 'bad-request', fact: band === undefined ? `It is not said which band is ${name}.` : `It has no band ${band} of values.`, remedy: `Choose from its bands: ${listed}.`, params: { band: band ?? name, listed } });
+  });
+}
+
+function sinkOf(grid: Grid, understood: RasterUnderstood, options: { method: ResampleMethod; bands: number; noData: readonly (number | null)[] }): WindowedSink {
+  const question = understood.questions.find(({ code }) => code === 'reference-system');
+  if (understood.reference === null || understood.transform === null) {
+    throw new ImportProblem({ code: 'no-reference', fact: question?.text ?? 'Its reference system is not known.', remedy: 'Answer the question about its reference system first.' });
+  }
+  const middle = at(understood.transform, understood.width / 2, understood.height / 2);
+  const toGrid = reprojectionTo(understood.reference, grid.epsg, middle);
+  const frame: RasterFrame = { width: understood.width, height: understood.height, transform: understood.transform, ...(toGrid === undefined ? {} : { toGrid }) };
+  return resampler(grid, frame, options);
+}
+
+/** Decodes every block of pixels that some grid needs once, and gives it to each of these grids. */
+async function feed(reader: PictureReader, sinks: readonly WindowedSink[], { onProgress, signal }: RasterOntoGridsRequest): Promise<void> {
+  const { blockWidth, blockHeight, blocksAcross, blocksDown } = reader.layout;
+  const needed: { blockCol: number; blockRow: number; takers: WindowedSink[] }[] = [];
+  for (let blockRow = 0; blockRow < blocksDown; blockRow++) {
+    const inRow = sinks.filter(({ window }) => window !== null && window.firstRow < (blockRow + 1) * blockHeight && window.firstRow + window.rows > blockRow * blockHeight);
+    for (let blockCol = 0; inRow.length > 0 && blockCol < blocksAcross; blockCol++) {
+      const takers = inRow.filter(({ window }) => window!.firstCol < (blockCol + 1) * blockWidth && window!.firstCol + window!.cols > blockCol * blockWidth);
+      if (takers.length > 0) needed.push({ blockCol, blockRow, takers });
+    }
+  }
+  const pixels = needed.length * blockWidth * blockHeight;
+  if (pixels > limits.rasterPixels) {
+    throw new ImportProblem({ code: 'too-large', fact: `${Math.round(pixels / 1e6)} million pixels lie over the blocks; ${limits.rasterPixels / 1e6} million is the most.`, remedy: 'Export it with larger pixels; 0.1 m is fine enough for vine rows.', params: { millionPixels: Math.round(pixels / 1e6) } });
+  }
+  for (let i = 0; i < needed.length; i++) {
+    const { blockCol, blockRow, takers } = needed[i]!;
+    const tile = reader.read(blockCol, blockRow);
+    if (tile !== null) for (const taker of takers) taker.add(tile);
+    if (i % 32 === 0) {
+      // Lets progress and cancelling through; the reading itself never waits.
+      await new Promise((resume) => setImmediate(resume));
+      signal?.throwIfAborted();
+      onProgress?.(i / needed.length);
+    }
+  }
+  onProgress?.(1);
+}
+
+interface Finishing {
+  understood: RasterUnderstood;
+  bands: readonly number[];
+  request: RasterOntoGridsRequest;
+}
+
+/** Mean of each band in true units, index from the means, thinly covered cells dropped. */
+function finish(grid: Grid, sink: WindowedSink, { understood, bands, request: { quantity, minCoverage = 0.5 } }: Finishing): GridReading {
+  const means = sink.cells().map((cells, i) => scaled(cells, understood.bands.find((band) => band.index === bands[i])!));
+  const values = quantity.kind === 'band' ? means[0]! : indexCells(quantity.index, Object.fromEntries(INDICES[quantity.index].bands.map((name, i) => [name, means[i]!])));
+  const covered = sink instanceof CellSums ? sink.covered() : values.map((value) => (Number.isNaN(value) ? 0 : 1));
+  const cells = values.map((value, cell) => (covered[cell]! + 1e-6 < minCoverage ? NaN : value));
+  return { gridKey: grid.key, cells, covered, reaches: sink.window !== null };
+}
+
+function scaled(cells: Float32Array, { scale, offset }: { scale: number; offset: number }): Float32Array {
+  return scale === 1 && offset === 0 ? cells : cells.map((value) => value * scale + offset);
+}
+
+function notOverlapping(understood: RasterUnderstood, grids: readonly Grid[]): ImportProblem {
+  const km = Math.min(...grids.flatMap((grid) => understood.boundsLonLat!.map((corner) => distanceKm(corner, fromUtm([grid.x0 + (grid.cols * grid.cellSizeM) / 2, grid.y0 - (grid.rows * grid.cellSizeM) / 2], grid.epsg)))));
+  const shown = km < 10 ? km.toFixed(1) : String(Math.round(km));
+  return new ImportProblem({
+    code: 'not-overlapping',
+    fact: `It does not cover ${grids.length === 1 ? 'the block' : 'any of the blocks'}: it lies ${shown} km away.`,
+    remedy: 'Check that it is the right file, and that its reference system is the one it names.',
+    params: { km: Number(shown) },
+  });
+}
+
+function noValues(blocks: number): ImportProblem {
+  return new ImportProblem({ code: 'no-values', fact: `It has no values over the ${blocks === 1 ? 'block' : 'blocks'}: every pixel there is marked as missing.`, remedy: 'Check that it is the right file and band, and that its mark for missing values is right.' });
+}

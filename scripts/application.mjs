@@ -1,6 +1,6 @@
 // What every script that runs the application shares: its environment, schema, demo estate and address.
 import { randomBytes } from 'node:crypto';
-import { existsSync, readFileSync, writeFileSync } from 'node:fs';
+import { existsSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { inState } from './checkout.mjs';
 import { query } from './postgres/query.mjs';
 import { CommandFailed, runCommand } from './process/runCommand.mjs';
@@ -44,18 +44,18 @@ async function isEmpty(url) {
 }
 
 /**
- * Brings the schema up to date and fills a new database with the demo estate. On the private cluster a mark says that
- * the demo is complete, so that an interrupted first start is finished; elsewhere only an empty database is filled.
+ * Brings the schema up to date and fills a database that has no estate with the demo estate. A mark is there while the
+ * demo is being made, so that an interrupted first start is finished by the next one.
  */
 export async function prepareDatabase(database, { from = 'built' } = {}) {
   const env = applicationEnv(database);
   await runServerProgram('migrate', { env, from });
-  if (!allowsDemo()) return;
-  const mark = inState('demo-is-there');
-  if (database.isPrivate ? existsSync(mark) : !(await isEmpty(database.url))) return;
+  const begun = inState('demo-begun');
+  if (!allowsDemo() || !(existsSync(begun) || (await isEmpty(database.url)))) return;
   say('Making the demo estate (once) …');
+  writeFileSync(begun, '');
   await runServerProgram('seedDemo', { env, from });
-  if (database.isPrivate) writeFileSync(mark, '');
+  rmSync(begun);
 }
 
 const demoPeople = ['owner', 'agronomist', 'manager', 'crew', 'winemaker', 'lab'];

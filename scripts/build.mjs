@@ -1,8 +1,9 @@
 // Builds client (vite) and server (tsc) into dist/, each only when its sources have changed since.
 import { existsSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { pathToFileURL } from 'node:url';
-import { filesBelow, sourceHash } from './build/sourceHash.mjs';
+import { sourceHash } from './build/sourceHash.mjs';
 import { inCheckout, npmProgram, root } from './checkout.mjs';
+import { filesBelow } from './filesBelow.mjs';
 import { CommandFailed, runCommand } from './process/runCommand.mjs';
 import { withLock } from './process/withLock.mjs';
 import { Problem, runMain, say } from './progress.mjs';

@@ -1,16 +1,7 @@
 import { createHash } from 'node:crypto';
-import { existsSync, readFileSync, readdirSync, statSync } from 'node:fs';
+import { readFileSync } from 'node:fs';
 import path from 'node:path';
-
-/** Every file below the given files and folders, as paths relative to `base`, sorted; those that do not exist are left out. */
-export function filesBelow(base, names) {
-  return names.flatMap((name) => {
-    const full = path.join(base, name);
-    if (!existsSync(full)) return [];
-    if (statSync(full).isFile()) return [name];
-    return filesBelow(base, readdirSync(full).map((entry) => path.join(name, entry)));
-  }).sort();
-}
+import { filesBelow } from '../filesBelow.mjs';
 
 /** Hash of names and contents of everything below the given files and folders (times do not count: a clone changes them). */
 export function sourceHash(base, names) {

@@ -29,3 +29,6 @@ export function withDatabase(url, name) {
 
 /** Name of the database in a connection address. */
 export const databaseName = (url) => decodeURIComponent(new URL(url).pathname.slice(1));
+
+/** Adds the extensions that the schema builds on; PostGIS may only be added by a superuser. */
+export const addExtensions = (url) => query(url, 'create extension if not exists postgis; create extension if not exists btree_gist');

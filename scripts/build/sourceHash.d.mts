@@ -1,0 +1,1 @@
+export function sourceHash(base: string, names: string[]): string;

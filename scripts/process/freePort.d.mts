@@ -1,0 +1,3 @@
+export function isPortFree(port: number): Promise<boolean>;
+export function nextFreePort(wanted: number): Promise<number>;
+export function wantedPort(text?: string): number;

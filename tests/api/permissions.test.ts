@@ -28,6 +28,17 @@ const doors: Door[] = [
   door('get', '/mail', 'mail.see'),
   door('get', `/jobs/${nobody}`, 'estate.see', 'read'),
   door('delete', `/jobs/${nobody}`, 'zoning.run', 'propose'),
+  door('get', '/measures', 'estate.see', 'read'),
+  door('post', '/measures', 'plans.margins'),
+  door('patch', `/measures/${nobody}`, 'plans.margins'),
+  door('get', '/restrictions', 'restrictions.see', 'read'),
+  door('post', '/restrictions', 'restrictions.set'),
+  door('post', `/restrictions/${nobody}/lift`, 'restrictions.lift'),
+  door('get', '/readings', 'readings.record', 'own'),
+  door('post', '/readings', 'readings.record', 'own'),
+  door('put', `/readings/${nobody}/exclusion`, 'outliers.exclude'),
+  door('get', '/conflicts', 'readings.correct'),
+  door('post', `/conflicts/${nobody}/settle`, 'readings.correct'),
 ];
 
 let app: TestApp;

@@ -1,0 +1,27 @@
+import { Router } from 'express';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { newRestriction, restrictionLift } from '../../shared/contracts/restrictions.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { liftRestriction, listRestrictions, setRestriction } from '../services/restrictions.ts';
+
+const filter = z.object({ block: id.optional() });
+
+/** Entry restrictions as recorded. What is recorded never says that it is safe to enter. */
+export function restrictionRoutes(): Router {
+  const router = Router({ mergeParams: true });
+  router.get('/restrictions', allow('restrictions.see', 'read'), async (request, response) => {
+    const { block } = filter.parse(request.query);
+    const items = await listRestrictions(accessOf(request), { ...(block ? { blockId: block } : {}), now: new Date() });
+    response.json({ items, total: items.length });
+  });
+  router.post('/restrictions', allow('restrictions.set'), async (request, response) => {
+    response.status(201).json(await setRestriction(accessOf(request), newRestriction.parse(request.body)));
+  });
+  router.post('/restrictions/:restrictionId/lift', allow('restrictions.lift'), async (request, response) => {
+    const { reason } = restrictionLift.parse(request.body);
+    await liftRestriction(accessOf(request), idParam(request, 'restrictionId'), { reason, now: new Date() });
+    response.status(204).end();
+  });
+  return router;
+}

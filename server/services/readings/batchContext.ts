@@ -1,0 +1,55 @@
+import type { Transaction } from 'objection';
+import type { NewReading, VineFinding } from '../../../shared/contracts/readings.ts';
+import type { Access } from '../../access/access.ts';
+import { Bag } from '../../models/Bag.ts';
+import { Block } from '../../models/Block.ts';
+import { BlockRow } from '../../models/BlockRow.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Reading } from '../../models/Reading.ts';
+import { Round } from '../../models/Round.ts';
+import { RoundPerson } from '../../models/RoundPerson.ts';
+import { Season } from '../../models/Season.ts';
+
+/** Everything of the estate that a batch refers to, loaded in sets. */
+export interface BatchContext {
+  blocks: Set<string>;
+  rows: Map<string, BlockRow>;
+  rounds: Set<string>;
+  bags: Set<string>;
+  measures: Map<string, MeasureRecord>;
+  known: Map<string, Reading>;
+  ownRoundsOnly: boolean;
+  seasonOn: (isoTime: string) => string | null;
+}
+
+export async function loadBatchContext(trx: Transaction, access: Access, batch: { readings: NewReading[]; findings: VineFinding[]; ownRoundsOnly: boolean }): Promise<BatchContext> {
+  const { readings, findings } = batch;
+  const estateId = access.estateId;
+  const ids = (pick: (reading: NewReading) => string | null) => [...new Set(readings.map(pick).filter((value) => value !== null))];
+  const rowIds = [...new Set([...ids((reading) => reading.rowId), ...findings.map((finding) => finding.rowId)])];
+  const rounds = Round.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.roundId)).select('id');
+  if (batch.ownRoundsOnly) rounds.whereIn('id', RoundPerson.query(trx).where({ estateId, personId: access.personId }).select('roundId'));
+  // One connection serves a transaction, so these run one after the other; each is one statement for the whole batch.
+  const blocks = await Block.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.blockId)).select('id');
+  const rows = await BlockRow.query(trx).where({ estateId }).whereIn('id', rowIds);
+  const roundRows = await rounds;
+  const bags = await Bag.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.bagId)).select('id');
+  const measures = await MeasureRecord.query(trx).where({ estateId });
+  const known = await Reading.query(trx)
+    .where({ estateId })
+    .whereIn('id', [...readings.map((reading) => reading.id), ...ids((reading) => reading.supersedes)]);
+  const seasons = await Season.query(trx).where({ estateId });
+  return {
+    blocks: new Set(blocks.map((block) => block.id)),
+    rows: new Map(rows.map((row) => [row.id, row])),
+    rounds: new Set(roundRows.map((round) => round.id)),
+    bags: new Set(bags.map((bag) => bag.id)),
+    measures: new Map(measures.map((measure) => [measure.code, measure])),
+    known: new Map(known.map((reading) => [reading.id, reading])),
+    ownRoundsOnly: batch.ownRoundsOnly,
+    seasonOn: (isoTime) => {
+      const day = new Date(isoTime).toISOString().slice(0, 10);
+      return seasons.find((season) => season.startsOn <= day && day <= season.endsOn)?.id ?? null;
+    },
+  };
+}

@@ -1,0 +1,85 @@
+import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
+import type { Access } from '../access/access.ts';
+import { Clash, Missing, Unusable } from '../errors.ts';
+import { queueMail } from '../mail/outbox.ts';
+import { writeAudit } from '../models/AuditEntry.ts';
+import { Block } from '../models/Block.ts';
+import { BlockRow } from '../models/BlockRow.ts';
+import { EntryRestriction } from '../models/EntryRestriction.ts';
+import { Estate } from '../models/Estate.ts';
+import { Membership } from '../models/Membership.ts';
+import { Person } from '../models/Person.ts';
+
+/** Restrictions of the estate or of one block, newest first; those in force are marked. */
+export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<RestrictionView[]> {
+  const query = EntryRestriction.query().where({ estateId: access.estateId }).orderBy('endsAt', 'desc').limit(300);
+  if (options.blockId) query.where({ blockId: options.blockId });
+  const rows = await query;
+  const [blocks, people] = await Promise.all([
+    Block.query().findByIds([...new Set(rows.map((row) => row.blockId))]).where({ estateId: access.estateId }).select('id', 'name'),
+    Person.query().findByIds([...new Set(rows.flatMap((row) => [row.setBy, row.liftedBy ?? row.setBy]))]).select('id', 'name'),
+  ]);
+  const nameOf = (list: { id: string; name: string }[], id: string | null) => list.find((item) => item.id === id)?.name ?? '';
+  return rows.map((row) => ({
+    id: row.id,
+    blockId: row.blockId,
+    blockName: nameOf(blocks, row.blockId),
+    rowIds: row.rowIds,
+    startsAt: row.startsAt.toISOString(),
+    endsAt: row.endsAt.toISOString(),
+    product: row.product,
+    labelInterval: row.labelInterval,
+    noPickBefore: row.noPickBefore,
+    note: row.note,
+    setBy: nameOf(people, row.setBy),
+    lifted: row.liftedAt ? { at: row.liftedAt.toISOString(), by: nameOf(people, row.liftedBy), reason: row.liftedReason ?? '' } : null,
+    inForce: row.liftedAt === null && row.startsAt <= options.now && row.endsAt > options.now,
+  }));
+}
+
+/** Sets a restriction and tells everybody with access: safety notices cannot be muted. */
+export async function setRestriction(access: Access, input: NewRestriction): Promise<{ id: string }> {
+  return EntryRestriction.transaction(async (trx) => {
+    const block = await Block.query(trx).findOne({ estateId: access.estateId, id: input.blockId }).whereNull('retiredAt');
+    if (!block) throw new Missing('This block is not in this estate.');
+    if (input.rowIds) {
+      const known = await BlockRow.query(trx).where({ estateId: access.estateId, blockId: block.id }).whereIn('id', input.rowIds).resultSize();
+      if (known !== new Set(input.rowIds).size) throw new Unusable('unknownRows', `Some of these rows are not rows of ${block.name}. Choose the rows again.`);
+    }
+    const row = await EntryRestriction.query(trx).insert({ ...input, startsAt: new Date(input.startsAt), endsAt: new Date(input.endsAt), estateId: access.estateId, setBy: access.personId });
+    await tellEverybody(access, block.name, input, trx);
+    await writeAudit(trx, access, { action: 'restrictions.set', subjectType: 'block', subjectId: block.id, subjectName: block.name, after: input });
+    return { id: row.id };
+  });
+}
+
+/** Ends a restriction before its time. Needs a person who may and a reason; both stay on record. */
+export async function liftRestriction(access: Access, restrictionId: string, options: { reason: string; now: Date }): Promise<void> {
+  await EntryRestriction.transaction(async (trx) => {
+    const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
+    if (row.liftedAt) throw new Clash('lifted', 'This restriction was lifted already.');
+    if (row.endsAt <= options.now) throw new Clash('over', 'This restriction has ended by itself.');
+    await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
+    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString() }, reason: options.reason });
+  });
+}
+
+async function tellEverybody(access: Access, blockName: string, input: NewRestriction, trx: Parameters<typeof queueMail>[0]): Promise<void> {
+  const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const setter = await Person.query(trx).findById(access.personId).throwIfNotFound();
+  const readers = await Person.query(trx)
+    .whereNotNull('email')
+    .whereIn('id', Membership.query(trx).where({ estateId: access.estateId }).whereNull('endedAt').whereNot({ role: 'guest' }).select('personId'));
+  for (const reader of readers) {
+    await queueMail(trx, {
+      estateId: access.estateId,
+      kind: 'restriction',
+      to: { address: reader.email!, name: reader.name, language: reader.language },
+      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: setter.name },
+    });
+  }
+}
+
+function localTime(iso: string, timeZone: string, language: string): string {
+  return new Intl.DateTimeFormat(language, { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(iso));
+}

@@ -153,14 +153,16 @@ function draftBlock(question: PlanQuestion): Draft {
   const { zones, measures, method = 'leastCost' } = question;
   const demands = measures.map((measure) => blockDemand(measure, zones));
   const shared = sharedZones(question, measures);
-  if (method === 'leastCost') {
+  // With one measure every sample costs the same, and the cheapest counts are those shared by spread.
+  const byCounts = method === 'leastCost' && measures.length === 1 ? 'spread' : method;
+  if (byCounts === 'leastCost') {
     const answer = leastCostForAll(shared, demands);
     const zoneDrivers = zones.map((_, i) => (answer.counts[i]! > Math.min(shared[i]!.minimum!, shared[i]!.maximum!) ? answer.binding : []));
     return { visits: answer.counts, counts: trimToVisited(shared, demands, answer.counts), zoneDrivers, drivers: answer.binding };
   }
   const answers = demands.map((demand) => {
     const priced = shared.map((zone, i) => ({ ...zone, sd: demand.spreads[i]! }));
-    return blockSampleSize({ zones: priced, margin: demand.margin, confidence: demand.confidence, method });
+    return blockSampleSize({ zones: priced, margin: demand.margin, confidence: demand.confidence, method: byCounts });
   });
   const counts = answers.map((answer) => answer.counts);
   const visits = zones.map((_, i) => Math.max(...counts.map((row) => row[i]!)));

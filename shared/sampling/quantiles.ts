@@ -48,8 +48,20 @@ export function criticalZ(confidence: number): number {
 
 /** Two-sided t factor for a confidence such as 0.95; df need not be whole, Infinity gives the normal. */
 export function criticalT(confidence: number, df: number): number {
-  return studentTUpperQuantile((1 - confidence) / 2, df);
+  if (!Number.isInteger(df) || df < 1 || df > REMEMBERED_DF) return studentTUpperQuantile((1 - confidence) / 2, df);
+  let row = remembered.get(confidence);
+  if (!row) {
+    row = new Float64Array(REMEMBERED_DF + 1);
+    if (remembered.size < REMEMBERED_LEVELS) remembered.set(confidence, row);
+  }
+  if (row[df] === 0) row[df] = studentTUpperQuantile((1 - confidence) / 2, df);
+  return row[df]!;
 }
+
+/** Searches and running checks ask for the same few factors thousands of times; each is worked out once. */
+const REMEMBERED_DF = 400;
+const REMEMBERED_LEVELS = 16;
+const remembered = new Map<number, Float64Array>();
 
 /** Above this the expansion around the normal is exact to 1e-12. */
 const NEARLY_NORMAL_DF = 1e5;

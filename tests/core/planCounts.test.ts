@@ -155,7 +155,7 @@ describe('counts against the margin', () => {
     for (const question of ['eachZone', 'block'] as const) {
       const started = performance.now();
       tradeOffCurves({ ...QUESTION, zones, measures: [measure], question }, 'brix', { confidences: [0.9, 0.95, 0.98, 0.99] });
-      expect(performance.now() - started).toBeLessThan(500);
+      expect(performance.now() - started).toBeLessThan(1500); // some 60 ms alone; other work on the machine may slow it
     }
   });
 });

@@ -1,4 +1,4 @@
-import type { FeatureCollection } from 'geojson';
+import type { FeatureCollection, MultiPolygon, Polygon } from 'geojson';
 import type { LonLat, RingLonLat } from '../../shared/geo/coordinates.ts';
 
 /** Something only a person can answer. Nothing is read from the file until it is answered. */
@@ -113,7 +113,7 @@ export interface GeometryRepair {
   placeLonLat: LonLat;
   areaBeforeHa: number;
   areaAfterHa: number;
-  repaired: GeoJSON.Polygon | GeoJSON.MultiPolygon | null;
+  repaired: Polygon | MultiPolygon | null;
 }
 
 export interface PointsUnderstood {
@@ -154,6 +154,8 @@ export interface ImportAnswers {
   epsg?: number;
   /** Text of a .prj file or a WKT definition. */
   projectionText?: string;
+  /** A place far from the estate is right. */
+  placement?: 'keep';
   /** null: every value counts. */
   noData?: number | null;
   layer?: string;

@@ -4,7 +4,8 @@ import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import { referenceQuestion } from '../reference/candidates.ts';
 import { distanceKm } from '../reference/distance.ts';
-import { datumWarning, referenceFromAnswer, referenceFromText, toLonLat } from '../reference/referenceSystem.ts';
+import { checkPlacement } from '../reference/placement.ts';
+import { datumWarning, referenceFromAnswer, referenceFromText } from '../reference/referenceSystem.ts';
 import type { ImportQuestion, ImportWarning, PixelTransform, RasterUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
 import { readBands } from './bandTags.ts';
 import { referenceFromGeoKeys } from './geoKeyReference.ts';
@@ -36,7 +37,10 @@ export function describeOpen(raster: OpenRaster, options: RasterReadOptions): Ra
   const { transform, isPoint } = placeOf(raster, options, warnings);
   const outline = outlineOf(transform, layout);
   const reference = referenceOf(raster, { options, outline, questions, warnings });
-  const bounds = reference === null ? null : boundsOf(reference, { outline, options, questions });
+  const placement = reference === null ? null : checkPlacement(outline, reference, options);
+  questions.push(...(placement?.questions ?? []));
+  warnings.push(...(placement?.warnings ?? []));
+  const bounds = placement?.outlineLonLat ?? null;
   warnings.push(...bandWarnings({ raster, ...bandNotes }));
   const known = bounds === null ? null : reference;
   return {
@@ -109,22 +113,6 @@ function referenceOf(raster: OpenRaster, { options, outline, questions, warnings
   return null;
 }
 
-interface BoundsInputs {
-  outline: readonly [number, number][];
-  options: RasterReadOptions;
-  questions: ImportQuestion[];
-}
-
-/** Outline in degrees; null and a question when the numbers cannot be coordinates of the system the file names. */
-function boundsOf(reference: ReferenceSystem, { outline, options, questions }: BoundsInputs): LonLat[] | null {
-  const convert = toLonLat(reference);
-  const ring = outline.map(convert);
-  if (ring.every((lonLat) => lonLat !== null)) return ring;
-  const [x, y] = outline[0]!;
-  questions.push(referenceQuestion(outline, options.estateLonLat ?? null, `The file says it is in ${reference.name}, but its coordinates (${short(x)}, ${short(y)}) cannot be of that system.`));
-  return null;
-}
-
 /** Root of the mean pixel area, from the two middle lines of the outline. */
 function pixelSizeM(ring: readonly LonLat[], { width, height }: { width: number; height: number }): number {
   const quarter = (ring.length - 1) / 4;
@@ -132,8 +120,4 @@ function pixelSizeM(ring: readonly LonLat[], { width, height }: { width: number;
   const across = distanceKm(corner(0), corner(1)) * 1000;
   const down = distanceKm(corner(1), corner(2)) * 1000;
   return Number(Math.sqrt((across / width) * (down / height)).toPrecision(6));
-}
-
-function short(value: number): string {
-  return String(Number(value.toPrecision(9)));
 }

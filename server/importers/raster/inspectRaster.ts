@@ -1,6 +1,5 @@
 import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
-import { farWarning } from '../reference/farFromEstate.ts';
 import type { ImportQuestion, ImportWarning, RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
 import { openRaster } from './openRaster.ts';
@@ -32,7 +31,6 @@ export function inspectRaster(input: string | Uint8Array, options: RasterReadOpt
         questions.push(...found.questions);
         warnings.push(...found.warnings);
       }
-      if (described.boundsLonLat !== null) warnings.push(...farWarning(described.boundsLonLat, options.estateLonLat ?? null));
       return { understood: { ...described, questions: onePerCode(questions), warnings }, preview };
     }),
   );

@@ -7,8 +7,10 @@ import { referenceFromEpsg, toLonLat } from './referenceSystem.ts';
 /** Most answers shown at once, and how far from the estate a sensible one may lie. */
 const SHOWN = 8;
 const FARTHEST_KM = 400;
-/** Two systems that place the file this close together are one answer. */
+/** Two systems that place the file this close together are one answer; the more usual one comes first in the list of codes. */
 const SAME_PLACE_KM = 0.02;
+/** Systems on old datums place a file a few hundred metres aside; among near answers the usual one is shown first. */
+const TIE_KM = 1;
 
 type XYPair = readonly [number, number];
 
@@ -30,7 +32,7 @@ function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
     if (away > FARTHEST_KM || found.some((other) => distanceKm(other.centre, place.centre) < SAME_PLACE_KM)) continue;
     found.push({ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: away, centre: place.centre });
   }
-  return found.sort((a, b) => a.distanceKm - b.distanceKm).slice(0, SHOWN).map(({ centre: _, ...choice }) => ({ ...choice, distanceKm: Math.round(choice.distanceKm * 10) / 10 }));
+  return found.sort((a, b) => Math.round(a.distanceKm / TIE_KM) - Math.round(b.distanceKm / TIE_KM)).slice(0, SHOWN).map(({ centre: _, ...choice }) => ({ ...choice, distanceKm: Math.round(choice.distanceKm * 10) / 10 }));
 }
 
 /** Without a place to compare with, only degrees can be recognised, by their size. */

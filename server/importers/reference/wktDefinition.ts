@@ -31,8 +31,22 @@ export function readWkt(text: string): WktReading {
   const outer = /(?:AUTHORITY\s*\[\s*"EPSG"\s*,\s*"?|ID\s*\[\s*"EPSG"\s*,\s*"?)(\d+)"?\s*\]\s*\]\s*$/i.exec(text);
   const own = parsed === null ? null : describe(parsed, text);
   if (outer !== null) return { kind: 'code', epsg: Number(outer[1]), name, definition: own !== null && 'definition' in own ? own.definition : null };
+  const usual = codeOfUsualName(name);
+  if (usual !== null && own !== null && 'definition' in own) return { kind: 'code', epsg: usual, name, definition: own.definition };
   if (own === null) return { kind: 'unknown', name, reason: 'it is not text that describes a reference system' };
   return 'definition' in own ? { kind: 'definition', name, ...own } : { kind: 'unknown', name, ...own };
+}
+
+/** .prj files name systems in their own dialect and leave the code out; the commonest names have one. */
+function codeOfUsualName(name: string): number | null {
+  if (name === 'GCS_WGS_1984') return 4326;
+  const utm = /^(WGS_1984|ETRS_1989|NAD_1983|SIRGAS_2000)_UTM_Zone_(\d{1,2})([NS])$/.exec(name);
+  const mga = /^(GDA_1994|GDA2020)_MGA_Zone_(\d{2})$/.exec(name);
+  if (mga !== null) return (mga[1] === 'GDA2020' ? 7800 : 28300) + Number(mga[2]);
+  if (utm === null) return null;
+  const north = utm[3] === 'N';
+  const base = { WGS_1984: north ? 32600 : 32700, ETRS_1989: 25800, NAD_1983: 26900, SIRGAS_2000: north ? 31954 : 31960 }[utm[1] as 'WGS_1984'];
+  return base + Number(utm[2]);
 }
 
 interface ParsedWkt {

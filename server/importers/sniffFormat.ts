@@ -1,0 +1,56 @@
+/** Formats by content. The name only decides between kinds of text that look alike. */
+export type SniffedFormat = 'geotiff' | 'zip' | 'geojson' | 'kml' | 'gpx' | 'xml' | 'table' | 'shapefile-part' | 'geopackage' | 'empty' | 'foreign';
+
+export interface Sniffed {
+  format: SniffedFormat;
+  /** For a foreign file: what it is, with its article, for a sentence. */
+  foreignName: string | null;
+}
+
+/** First bytes of files that people send by mistake. */
+const foreign: readonly (readonly [bytes: readonly number[], name: string])[] = [
+  [[0x89, 0x50, 0x4e, 0x47], 'a PNG picture'],
+  [[0xff, 0xd8, 0xff], 'a JPEG picture'],
+  [[0x47, 0x49, 0x46, 0x38], 'a GIF picture'],
+  [[0x42, 0x4d], 'a BMP picture'],
+  [[0x25, 0x50, 0x44, 0x46], 'a PDF document'],
+  [[0xd0, 0xcf, 0x11, 0xe0], 'an old office document'],
+  [[0x4d, 0x5a], 'a Windows program'],
+  [[0x7f, 0x45, 0x4c, 0x46], 'a Linux program'],
+  [[0x23, 0x21], 'a script'],
+  [[0x1f, 0x8b], 'a gzip archive'],
+  [[0x37, 0x7a, 0xbc, 0xaf], 'a 7z archive'],
+  [[0x52, 0x61, 0x72, 0x21], 'a RAR archive'],
+  [[0xfd, 0x37, 0x7a, 0x58], 'an xz archive'],
+  [[0x89, 0x48, 0x44, 0x46], 'an HDF5 file'],
+  [[0x43, 0x44, 0x46], 'a NetCDF file'],
+  [[0x00, 0x00, 0x00, 0x0c, 0x6a, 0x50], 'a JPEG 2000 picture'],
+];
+
+/** `first` should hold the first 4096 bytes (fewer when the file is shorter). */
+export function sniffFormat(first: Uint8Array, name: string): Sniffed {
+  if (first.length === 0) return found('empty');
+  const is = (bytes: readonly number[], at = 0): boolean => bytes.every((byte, i) => first[at + i] === byte);
+  if (is([0x49, 0x49, 42, 0]) || is([0x4d, 0x4d, 0, 42]) || is([0x49, 0x49, 43, 0]) || is([0x4d, 0x4d, 0, 43])) return found('geotiff');
+  if (is([0x50, 0x4b, 3, 4]) || is([0x50, 0x4b, 5, 6])) return found('zip');
+  if (is([...'SQLite format 3'].map((letter) => letter.charCodeAt(0)))) return found('geopackage');
+  if (is([0, 0, 0x27, 0x0a])) return found('shapefile-part');
+  const other = foreign.find(([bytes]) => is(bytes));
+  if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
+  return sniffText(first, name);
+}
+
+function sniffText(first: Uint8Array, name: string): Sniffed {
+  const wide = (first[0] === 0xff && first[1] === 0xfe) || (first[0] === 0xfe && first[1] === 0xff) || first.subarray(0, 200).filter((byte) => byte === 0).length > Math.min(first.length, 200) / 3;
+  const text = (wide ? String.fromCharCode(...first.filter((byte) => byte !== 0 && byte < 0xfe)) : new TextDecoder().decode(first)).replace(/^\uFEFF/, '').trimStart();
+  if (!wide && first.subarray(0, 2000).includes(0)) return { format: 'foreign', foreignName: 'a binary file of an unknown kind' };
+  if (/^<\?xml|^<kml|^<gpx|^<!--/i.test(text)) return found(/<kml[\s>]/i.test(text) ? 'kml' : /<gpx[\s>]/i.test(text) ? 'gpx' : 'xml');
+  if (/^<!doctype html|^<html|^<head/i.test(text)) return { format: 'foreign', foreignName: 'a web page' };
+  if (/^[{[]/.test(text)) return found('geojson');
+  if (/^(PROJCS|GEOGCS|PROJCRS)\[/.test(text)) return { format: 'foreign', foreignName: 'a projection file (.prj) without its layer' };
+  return /\.(csv|tsv|txt|tab|asc|xyz)$/i.test(name) || /[,;\t|]/.test(text.split(/\r?\n/)[0] ?? '') ? found('table') : { format: 'foreign', foreignName: 'a text of an unknown kind' };
+}
+
+function found(format: SniffedFormat): Sniffed {
+  return { format, foreignName: null };
+}

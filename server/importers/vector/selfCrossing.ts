@@ -1,0 +1,67 @@
+/** Where rings of one polygon cross themselves or each other. */
+
+type Position = readonly number[];
+
+/**
+ * First place where two edges of the rings properly cross (touching at a corner is allowed), and how many crossings there
+ * are, counted up to `most`. Edges are swept from west to east, so only edges that overlap in x are compared.
+ * Cost: n log n for outlines as they occur.
+ */
+export function findCrossings(rings: readonly (readonly Position[])[], most = 20): { first: [number, number] | null; count: number } {
+  const edges = edgesOf(rings);
+  const order = Array.from({ length: edges.length / 4 }, (_, i) => i).sort((a, b) => westOf(edges, a) - westOf(edges, b));
+  let active: number[] = [];
+  let first: [number, number] | null = null;
+  let count = 0;
+  for (const edge of order) {
+    const west = westOf(edges, edge);
+    const [south, north] = [Math.min(edges[edge * 4 + 1]!, edges[edge * 4 + 3]!), Math.max(edges[edge * 4 + 1]!, edges[edge * 4 + 3]!)];
+    const still: number[] = [];
+    for (const other of active) {
+      if (Math.max(edges[other * 4]!, edges[other * 4 + 2]!) < west) continue;
+      still.push(other);
+      if (Math.max(edges[other * 4 + 1]!, edges[other * 4 + 3]!) < south || Math.min(edges[other * 4 + 1]!, edges[other * 4 + 3]!) > north) continue;
+      const place = crossing(edges, edge, other);
+      if (place === null) continue;
+      first ??= place;
+      count++;
+      if (count >= most) return { first, count };
+    }
+    still.push(edge);
+    active = still;
+  }
+  return { first, count };
+}
+
+/** Four numbers an edge: x, y, x, y. */
+function edgesOf(rings: readonly (readonly Position[])[]): Float64Array {
+  const total = rings.reduce((sum, ring) => sum + Math.max(0, ring.length - 1), 0);
+  const edges = new Float64Array(total * 4);
+  let at = 0;
+  for (const ring of rings) {
+    for (let i = 0; i + 1 < ring.length; i++) {
+      edges.set([ring[i]![0]!, ring[i]![1]!, ring[i + 1]![0]!, ring[i + 1]![1]!], at);
+      at += 4;
+    }
+  }
+  return edges;
+}
+
+function westOf(edges: Float64Array, edge: number): number {
+  return Math.min(edges[edge * 4]!, edges[edge * 4 + 2]!);
+}
+
+/** Crossing point of two edges whose ends lie strictly on both sides of each other, or null. */
+function crossing(edges: Float64Array, a: number, b: number): [number, number] | null {
+  const [ax, ay, bx, by] = [edges[a * 4]!, edges[a * 4 + 1]!, edges[a * 4 + 2]!, edges[a * 4 + 3]!];
+  const [cx, cy, dx, dy] = [edges[b * 4]!, edges[b * 4 + 1]!, edges[b * 4 + 2]!, edges[b * 4 + 3]!];
+  const side = (x: number, y: number, fromX: number, fromY: number, toX: number, toY: number): number => (toX - fromX) * (y - fromY) - (toY - fromY) * (x - fromX);
+  const c = side(cx, cy, ax, ay, bx, by);
+  const d = side(dx, dy, ax, ay, bx, by);
+  if (!(c * d < 0)) return null;
+  const e = side(ax, ay, cx, cy, dx, dy);
+  const f = side(bx, by, cx, cy, dx, dy);
+  if (!(e * f < 0)) return null;
+  const part = e / (e - f);
+  return [ax + part * (bx - ax), ay + part * (by - ay)];
+}

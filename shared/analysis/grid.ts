@@ -3,6 +3,7 @@
  * In: outline in degrees, cell size in metres. Out: cells in the UTM zone of the block, row 0 in the north, cell index
  * `row * cols + col`, edges on whole multiples of the cell size. Cost: one pass over the outline and the cells.
  */
+import { boundsOf } from '../geo/bounds.ts';
 import type { MultiPolygonLonLat, MultiPolygonXY, XY } from '../geo/coordinates.ts';
 import { polygonsCentroid } from '../geo/rings.ts';
 import { polygonsToUtm, utmEpsg } from '../geo/utm.ts';
@@ -77,15 +78,7 @@ export interface GridFrame {
 }
 
 function frameOf(outlineXY: MultiPolygonXY, cellSizeM: number): GridFrame {
-  let [minX, minY, maxX, maxY] = [Infinity, Infinity, -Infinity, -Infinity];
-  for (const rings of outlineXY) {
-    for (const [x, y] of rings[0] ?? []) {
-      minX = Math.min(minX, x);
-      maxX = Math.max(maxX, x);
-      minY = Math.min(minY, y);
-      maxY = Math.max(maxY, y);
-    }
-  }
+  const [minX, minY, maxX, maxY] = boundsOf(outlineXY.flat());
   if (!(maxX > minX && maxY > minY)) throw new AnalysisError('outline-empty', 'The outline has no area; draw a ring of at least three corners.');
   // A tenth of a millimetre of slack keeps an edge drawn on a cell border from adding an empty row of cells.
   const slack = 1e-4 / cellSizeM;

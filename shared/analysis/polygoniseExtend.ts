@@ -20,53 +20,58 @@ export function extendLabels(grid: Grid, labels: Labels): ExtendedLabels {
   const rows = grid.rows + 2 * EXTENSION;
   const out = new Uint8Array(cols * rows);
   const isWanted = new Uint8Array(cols * rows);
-  let wanted = 0;
   for (let row = 0; row < grid.rows; row++) {
+    const from = (row + EXTENSION) * cols + EXTENSION;
     for (let col = 0; col < grid.cols; col++) {
       const cell = row * grid.cols + col;
-      const at = (row + EXTENSION) * cols + col + EXTENSION;
-      out[at] = grid.inside[cell] === 1 ? labels[cell]! : 0;
-      if (grid.share[cell]! > 0) wanted += widen(isWanted, { at, cols, reach: isDeepInside(grid, col, row) ? 0 : REACH });
+      if (grid.inside[cell] === 1) out[from + col] = labels[cell]!;
+      if (grid.share[cell]! > 0) isWanted[from + col] = 1;
     }
   }
+  widenByReach(isWanted, cols);
   spread(out, cols, (cell) => isWanted[cell] === 1);
-  // A part of the block too small or too far to be reached from a labelled cell takes the nearest label over the gap.
-  const reached = out.reduce((sum, label, cell) => sum + (label > 0 && isWanted[cell] === 1 ? 1 : 0), 0);
-  if (reached === 0) throw new AnalysisError('labels-empty', 'No cell inside the block carries a zone.');
-  if (reached < wanted) {
-    const everywhere = new Uint8Array(out);
-    spread(everywhere, cols, () => true);
-    for (let cell = 0; cell < out.length; cell++) if (isWanted[cell] === 1) out[cell] = everywhere[cell]!;
-  }
+  fillUnreached(out, isWanted, cols);
   return { labels: out, cols, rows };
 }
 
-/** True where all eight cells around touch the block too: the cells beyond are then reached from nearer the outline. */
-function isDeepInside({ share, cols, rows }: Grid, col: number, row: number): boolean {
-  if (col === 0 || row === 0 || col === cols - 1 || row === rows - 1) return false;
-  const cell = row * cols + col;
-  for (const middle of [cell - cols, cell, cell + cols]) if (share[middle - 1]! <= 0 || share[middle]! <= 0 || share[middle + 1]! <= 0) return false;
-  return true;
+/** A part of the block too small or too far to be reached from a labelled cell takes the nearest label over the gap. */
+function fillUnreached(labels: Labels, isWanted: Uint8Array, cols: number): void {
+  let isAnyLabelled = false;
+  let isAnyMissing = false;
+  for (let cell = 0; cell < labels.length; cell++) {
+    if (labels[cell]! > 0) isAnyLabelled = true;
+    else if (isWanted[cell] === 1) isAnyMissing = true;
+  }
+  if (!isAnyLabelled) throw new AnalysisError('labels-empty', 'No cell inside the block carries a zone.');
+  if (!isAnyMissing) return;
+  const everywhere = new Uint8Array(labels);
+  spread(everywhere, cols, () => true);
+  for (let cell = 0; cell < labels.length; cell++) if (isWanted[cell] === 1) labels[cell] = everywhere[cell]!;
 }
 
-/** Marks the square of cells around one; how many were new. */
-function widen(isWanted: Uint8Array, { at, cols, reach }: { at: number; cols: number; reach: number }): number {
-  let added = 0;
-  for (let down = -reach; down <= reach; down++) {
-    for (let right = -reach; right <= reach; right++) {
-      const cell = at + down * cols + right;
-      added += 1 - isWanted[cell]!;
-      isWanted[cell] = 1;
+/** Marks all cells up to REACH columns and rows from a marked one: ring by ring, from the cells at the edge. */
+function widenByReach(isMarked: Uint8Array, cols: number): void {
+  for (let ring = 0; ring < REACH; ring++) {
+    const added: number[] = [];
+    for (let cell = cols + 1; cell < isMarked.length - cols - 1; cell++) {
+      if (isMarked[cell] === 1) continue;
+      const north = cell - cols;
+      const south = cell + cols;
+      const beside = isMarked[cell - 1]! | isMarked[cell + 1]!;
+      const above = isMarked[north - 1]! | isMarked[north]! | isMarked[north + 1]!;
+      const below = isMarked[south - 1]! | isMarked[south]! | isMarked[south + 1]!;
+      if ((beside | above | below) === 1) added.push(cell);
     }
+    for (const cell of added) isMarked[cell] = 1;
   }
-  return added;
 }
 
 /** Breadth first from all labelled cells; of equally near labels the one of the lower cell index wins. */
 function spread(labels: Labels, cols: number, isAllowed: (cell: number) => boolean): void {
   let front: number[] = [];
   for (let cell = cols; cell < labels.length - cols; cell++) {
-    if (labels[cell]! > 0 && [cell - cols, cell - 1, cell + 1, cell + cols].some((near) => labels[near] === 0)) front.push(cell);
+    const isAtEdge = labels[cell - cols] === 0 || labels[cell - 1] === 0 || labels[cell + 1] === 0 || labels[cell + cols] === 0;
+    if (labels[cell]! > 0 && isAtEdge) front.push(cell);
   }
   while (front.length > 0) {
     const next: number[] = [];

@@ -1,4 +1,5 @@
 /** Closed walks of one zone put together as polygons: each hole into the smallest ring that holds it. */
+import { boundsHold, boundsOf } from '../geo/bounds.ts';
 import type { XY } from '../geo/coordinates.ts';
 import { signedArea } from '../geo/rings.ts';
 import { ringOf, type Walk } from './polygoniseFaces.ts';
@@ -17,33 +18,16 @@ export function nestRings(walks: readonly Walk[]): ZoneRing[][] {
     return { walk, ring, areaM2: signedArea(ring) };
   });
   const outers = rings.filter(({ areaM2 }) => areaM2 > 0).sort((a, b) => b.areaM2 - a.areaM2);
-  const polygons = outers.map((outer) => ({ outer, box: boxOf(outer.ring), holes: [] as ZoneRing[] }));
+  const polygons = outers.map((outer) => ({ outer, bounds: boundsOf([outer.ring]), holes: [] as ZoneRing[] }));
   for (const hole of rings) {
     if (hole.areaM2 > 0) continue;
-    const box = boxOf(hole.ring);
-    const around = polygons.filter(({ outer, box: outerBox }) => outer.areaM2 > -hole.areaM2 && holdsBox(outerBox, box));
+    const bounds = boundsOf([hole.ring]);
+    const around = polygons.filter((polygon) => polygon.outer.areaM2 > -hole.areaM2 && boundsHold(polygon.bounds, bounds));
     const home = around.length === 1 ? around[0] : around.findLast(({ outer }) => holdsPoint(outer.ring, hole.ring[0]!));
     if (home === undefined) throw new Error('A hole lies in no zone.');
     home.holes.push(hole);
   }
   return polygons.map(({ outer, holes }) => [outer, ...holes]);
-}
-
-type Box = readonly [minX: number, minY: number, maxX: number, maxY: number];
-
-function boxOf(ring: readonly XY[]): Box {
-  let [minX, minY, maxX, maxY] = [Infinity, Infinity, -Infinity, -Infinity];
-  for (const [x, y] of ring) {
-    minX = Math.min(minX, x);
-    minY = Math.min(minY, y);
-    maxX = Math.max(maxX, x);
-    maxY = Math.max(maxY, y);
-  }
-  return [minX, minY, maxX, maxY];
-}
-
-function holdsBox(outer: Box, inner: Box): boolean {
-  return outer[0] <= inner[0] && outer[1] <= inner[1] && outer[2] >= inner[2] && outer[3] >= inner[3];
 }
 
 function holdsPoint(ring: readonly XY[], [x, y]: XY): boolean {

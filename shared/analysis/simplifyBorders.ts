@@ -36,6 +36,7 @@ class Network {
   private readonly endNode: Int32Array;
   private readonly occupied: Uint8Array;
   private readonly width: number;
+  private readonly span = new Float64Array(2);
   /** Borders between the same two nodes that have no point left between: at most one may be straight. */
   private readonly straight = new Set<number>();
 
@@ -147,29 +148,34 @@ class Network {
 
   /** No point of any border in the closed triangle, its own corners aside; walked row by row. */
   private isTriangleEmpty(a: number, b: number, c: number): boolean {
-    const { u, v } = this;
+    const { u, v, span } = this;
     const top = Math.min(v[a]!, v[b]!, v[c]!);
     const bottom = Math.max(v[a]!, v[b]!, v[c]!);
     for (let row = top; row <= bottom; row++) {
-      let from = Infinity;
-      let to = -Infinity;
-      for (const [p, q] of [[a, b], [b, c], [c, a]] as const) {
-        const low = Math.min(v[p]!, v[q]!);
-        const high = Math.max(v[p]!, v[q]!);
-        if (row < low || row > high) continue;
-        const at = (end: number) => (low === high ? u[end]! : u[p]! + ((row - v[p]!) * (u[q]! - u[p]!)) / (v[q]! - v[p]!));
-        from = Math.min(from, at(p), at(q));
-        to = Math.max(to, at(p), at(q));
-      }
+      span[0] = Infinity;
+      span[1] = -Infinity;
+      this.widenSpan(row, a, b);
+      this.widenSpan(row, b, c);
+      this.widenSpan(row, c, a);
       // A hair of slack against rounding; a point just outside may then forbid a removal, which does no harm.
-      for (let col = Math.ceil(from - 1e-9); col <= to + 1e-9; col++) {
-        if (this.occupied[row * this.width + col] === 1 && !this.isCorner(col, row, [a, b, c])) return false;
+      const to = span[1]! + 1e-9;
+      for (let col = Math.ceil(span[0]! - 1e-9); col <= to; col++) {
+        if (this.occupied[row * this.width + col] === 0) continue;
+        const isCorner = (col === u[a] && row === v[a]) || (col === u[b] && row === v[b]) || (col === u[c] && row === v[c]);
+        if (!isCorner) return false;
       }
     }
     return true;
   }
 
-  private isCorner(col: number, row: number, corners: readonly number[]): boolean {
-    return corners.some((corner) => this.u[corner] === col && this.v[corner] === row);
+  /** Widens the stretch of a row that the triangle covers by where its side from p to q passes. */
+  private widenSpan(row: number, p: number, q: number): void {
+    const { u, v, span } = this;
+    const down = v[q]! - v[p]!;
+    if ((row < v[p]! && row < v[q]!) || (row > v[p]! && row > v[q]!)) return;
+    const at = down === 0 ? u[p]! : u[p]! + ((row - v[p]!) * (u[q]! - u[p]!)) / down;
+    const other = down === 0 ? u[q]! : at;
+    span[0] = Math.min(span[0]!, at, other);
+    span[1] = Math.max(span[1]!, at, other);
   }
 }

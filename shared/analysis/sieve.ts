@@ -57,3 +57,18 @@ export function sieveByLargestNeighbour(labels: Labels, cols: number, { minCells
   });
   return labels.map((label, cell) => (label === 0 ? 0 : labelOf[patches.patchOf[cell]!]!));
 }
+
+export interface SmallPatch {
+  readonly label: number;
+  readonly cells: number;
+  /** A cell of the patch, to show the place. */
+  readonly firstCell: number;
+}
+
+/** Patches below the minimum, in the order of their first cell: what a hand edit has left that is too small to work with. */
+export function smallPatches(labels: Labels, cols: number, { minCells, connectivity = 4 }: SieveOptions): SmallPatch[] {
+  const { patchOf, sizes, labels: patchLabels } = findPatches(labels, cols, connectivity);
+  return Array.from(sizes.keys())
+    .filter((patch) => sizes[patch]! < minCells)
+    .map((patch) => ({ label: patchLabels[patch]!, cells: sizes[patch]!, firstCell: patchOf.indexOf(patch) }));
+}

@@ -162,4 +162,5 @@ export interface ImportAnswers {
   xColumn?: string;
   yColumn?: string;
   swapAxes?: boolean;
+  decimalMark?: '.' | ',';
 }

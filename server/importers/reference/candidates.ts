@@ -25,8 +25,10 @@ export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonL
 
 function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
   const found: (QuestionChoice & { distanceKm: number; centre: LonLat })[] = [];
+  const degrees = looksLikeDegrees(outline);
   for (const epsg of new Set(candidateCodes(estate))) {
-    const place = placeWith(outline, epsg);
+    // Numbers the size of degrees would lie at the origin of a national grid, which may be near by chance.
+    const place = degrees === (epsg === 4326) ? placeWith(outline, epsg) : null;
     if (place === null) continue;
     const away = distanceKm(place.centre, estate);
     if (away > FARTHEST_KM || found.some((other) => distanceKm(other.centre, place.centre) < SAME_PLACE_KM)) continue;
@@ -39,9 +41,13 @@ function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
 function plausible(outline: readonly XYPair[]): QuestionChoice[] {
   return [4326, 3857].flatMap((epsg) => {
     const place = placeWith(outline, epsg);
-    const looksLikeDegrees = outline.every(([x, y]) => Math.abs(x) <= 180 && Math.abs(y) <= 90);
-    return place === null || (epsg === 4326) !== looksLikeDegrees ? [] : [{ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: null }];
+    return place === null || (epsg === 4326) !== looksLikeDegrees(outline) ? [] : [{ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: null }];
   });
+}
+
+/** All numbers are small enough to be longitude and latitude. */
+export function looksLikeDegrees(outline: readonly XYPair[]): boolean {
+  return outline.every(([x, y]) => Math.abs(x) <= 180 && Math.abs(y) <= 90);
 }
 
 function placeWith(outline: readonly XYPair[], epsg: number): { name: string; outline: RingLonLat; centre: LonLat } | null {

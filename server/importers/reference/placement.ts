@@ -1,6 +1,6 @@
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
 import type { ImportQuestion, ImportWarning, ReadOptions, ReferenceSystem } from '../understood.ts';
-import { referenceQuestion } from './candidates.ts';
+import { looksLikeDegrees, referenceQuestion } from './candidates.ts';
 import { distanceKm } from './distance.ts';
 import { toLonLat } from './referenceSystem.ts';
 
@@ -41,11 +41,6 @@ export function checkPlacement(outline: readonly XYPair[], reference: ReferenceS
   const keep = { value: 'keep', label: `It does lie there (${reference.name})`, outlineLonLat: ring, distanceKm: shown };
   const nearby = referenceQuestion(outline, estateLonLat, '').choices.filter((choice) => (choice.distanceKm ?? Infinity) < CONFIRM_KM);
   return { outlineLonLat: ring, questions: [{ code: 'placement', text: `${text} Is that right, or are its coordinates in another reference system than ${reference.name}?`, choices: [keep, ...nearby] }], warnings: [] };
-}
-
-/** All numbers are small enough to be longitude and latitude. */
-export function looksLikeDegrees(outline: readonly XYPair[]): boolean {
-  return outline.every(([x, y]) => Math.abs(x) <= 180 && Math.abs(y) <= 90);
 }
 
 /** From the estate to the nearest point of the box around the positions; 0 inside. */

@@ -40,11 +40,14 @@ export function unitOf(definition: string): number | null {
 /** Position in degrees of a position in the system; null where the system has no such place. */
 export function toLonLat(reference: ReferenceSystem): (xy: readonly [number, number]) => LonLat | null {
   const turned = reference.definition.includes('+axis=');
+  const isPlain = reference.unitM === null && !/\+(towgs84|pm)=/.test(reference.definition);
   const converter = proj4(reference.definition);
   return ([x, y]) => {
     if (!Number.isFinite(x) || !Number.isFinite(y)) return null;
     // Beyond a turn of the globe the arithmetic would wrap around and give a place all the same.
-    if (reference.unitM === null && (Math.abs(x) > 540 || Math.abs(y) > 90.000001)) return null;
+    if (reference.unitM === null && (Math.abs(x) > 360 || Math.abs(y) > 90.000001)) return null;
+    // Degrees that need no conversion keep every digit; some world-wide files count to 360.
+    if (isPlain) return [x > 180 ? x - 360 : x, y];
     try {
       const [lon, lat] = converter.inverse([x, y], turned);
       return Number.isFinite(lon) && Number.isFinite(lat) && Math.abs(lat) <= 90.000001 ? [lon, lat] : null;

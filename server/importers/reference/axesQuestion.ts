@@ -1,6 +1,6 @@
-import { distanceKm } from '../reference/distance.ts';
-import { looksLikeDegrees } from '../reference/placement.ts';
-import { toLonLat } from '../reference/referenceSystem.ts';
+import { distanceKm } from './distance.ts';
+import { looksLikeDegrees } from './candidates.ts';
+import { toLonLat } from './referenceSystem.ts';
 import type { ImportQuestion, ReadOptions, ReferenceSystem } from '../understood.ts';
 
 /** A swap must bring the file this much nearer to the estate to be worth asking. */

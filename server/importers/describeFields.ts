@@ -1,4 +1,4 @@
-import type { FieldUnderstood } from '../understood.ts';
+import type { FieldUnderstood } from './understood.ts';
 
 type Value = unknown;
 

@@ -1,0 +1,45 @@
+import { withSource } from './byteSource.ts';
+import { ImportProblem, naming } from './importProblem.ts';
+import { readPoints } from './points/readPoints.ts';
+import type { RasterReadOptions } from './raster/describeRaster.ts';
+import { inspectRaster } from './raster/inspectRaster.ts';
+import { sniffFormat, type Sniffed, type SniffedFormat } from './sniffFormat.ts';
+import type { PointsUnderstood, RasterUnderstood, VectorUnderstood } from './understood.ts';
+import { readVectors } from './vector/readVectors.ts';
+
+export type Understood = RasterUnderstood | VectorUnderstood | PointsUnderstood;
+
+export interface ImportFormat {
+  readonly id: string;
+  /** What the sniffer calls contents of this format. */
+  readonly contents: readonly SniffedFormat[];
+  readonly endings: readonly string[];
+  readonly kind: Understood['kind'];
+  readonly read: (input: string | Uint8Array, options: RasterReadOptions) => Promise<Understood>;
+}
+
+/** Formats that are read. A new one is a reader and its row. */
+export const importFormats: readonly ImportFormat[] = [
+  { id: 'geotiff', contents: ['geotiff'], endings: ['tif', 'tiff'], kind: 'raster', read: async (input, options) => (await inspectRaster(input, options)).understood },
+  { id: 'shapefile', contents: ['zip'], endings: ['zip', 'kmz'], kind: 'vector', read: readVectors },
+  { id: 'geojson', contents: ['geojson'], endings: ['geojson', 'json'], kind: 'vector', read: readVectors },
+  { id: 'kml', contents: ['kml'], endings: ['kml'], kind: 'vector', read: readVectors },
+  { id: 'gpx', contents: ['gpx'], endings: ['gpx'], kind: 'vector', read: readVectors },
+  { id: 'table', contents: ['table'], endings: ['csv', 'tsv', 'txt'], kind: 'points', read: readPoints },
+];
+
+/** What a file holds, whatever its name says. Throws ImportProblem for anything that cannot be used. */
+export async function understandFile(input: string | Uint8Array, options: RasterReadOptions): Promise<Understood> {
+  const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffFormat(source.read(0, Math.min(4096, source.size)), options.fileName)));
+  const format = importFormats.find(({ contents }) => contents.includes(sniffed.format));
+  if (format === undefined) throw unreadable(sniffed, options.fileName);
+  return format.read(input, options);
+}
+
+function unreadable({ format, foreignName }: Sniffed, file: string): ImportProblem {
+  if (format === 'empty') return new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.', file });
+  if (format === 'shapefile-part') return new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.', file });
+  const found = foreignName ?? (format === 'geopackage' ? 'a GeoPackage database' : 'XML of a kind that is not read');
+  const remedy = format === 'geopackage' ? 'Export its layer as a zipped shapefile or GeoJSON.' : 'Send a GeoTIFF, a zipped shapefile, GeoJSON, KML, KMZ, GPX or CSV.';
+  return new ImportProblem({ code: 'wrong-type', fact: `It is ${found}.`, remedy, params: { found }, file });
+}

@@ -1,0 +1,76 @@
+import type { ImportWarning } from '../understood.ts';
+import { cellNumber, type DecimalMark } from './cellNumbers.ts';
+import { readAngle } from './degrees.ts';
+import type { ParsedTable } from './parseTable.ts';
+import type { PositionColumns } from './positionColumns.ts';
+
+export interface PositionReading {
+  /** Indexes of the rows with a usable position. */
+  kept: number[];
+  x: Float64Array;
+  y: Float64Array;
+  setAside: { reason: string; count: number; rows: number[] }[];
+  warnings: ImportWarning[];
+}
+
+interface Reading {
+  mark: DecimalMark;
+  swap: boolean;
+}
+
+/** How many row numbers of each reason are listed. */
+const LISTED = 20;
+
+/** Positions of all rows; a row without one is set aside with its reason, never guessed. */
+export function readPositions(table: ParsedTable, columns: PositionColumns, { mark, swap }: Reading): PositionReading {
+  const kept: number[] = [];
+  const x = new Float64Array(table.rows.length);
+  const y = new Float64Array(table.rows.length);
+  const aside = new Map<string, number[]>();
+  let sexagesimal = 0;
+  let lettersSwapped = 0;
+  for (const [row, cells] of table.rows.entries()) {
+    const [first, second] = [readCell(cells[columns.x] ?? '', mark), readCell(cells[columns.y] ?? '', mark)];
+    // Hemisphere letters say which is which whatever the columns are called.
+    const crossed = first.axis === 'lat' && second.axis === 'lon';
+    const [a, b] = crossed !== swap ? [second.value, first.value] : [first.value, second.value];
+    const reason = whyAside(cells, { columns, a, b, width: table.names.length });
+    if (reason !== null) {
+      const rows = aside.get(reason) ?? [];
+      rows.push(table.rowNumbers[row]!);
+      aside.set(reason, rows);
+      continue;
+    }
+    if (first.isSexagesimal || second.isSexagesimal) sexagesimal++;
+    if (crossed) lettersSwapped++;
+    x[kept.length] = a;
+    y[kept.length] = b;
+    kept.push(row);
+  }
+  const warnings: ImportWarning[] = [];
+  if (sexagesimal > 0) warnings.push({ code: 'degrees-minutes', text: `Its positions are written in degrees and minutes; they are turned into decimal degrees (the first is ${y[0]!.toFixed(6)}, ${x[0]!.toFixed(6)}).`, params: { count: sexagesimal } });
+  if (lettersSwapped > 0) warnings.push({ code: 'letters-swapped', text: 'The letters N, S, E, W say that latitude and longitude stand in each other’s column; the letters are followed.', params: { count: lettersSwapped } });
+  return { kept, x, y, warnings, setAside: [...aside].map(([reason, rows]) => ({ reason, count: rows.length, rows: rows.slice(0, LISTED) })) };
+}
+
+function readCell(cell: string, mark: DecimalMark): { value: number; axis: 'lat' | 'lon' | null; isSexagesimal: boolean } {
+  const number = cellNumber(cell, mark);
+  if (!Number.isNaN(number.value) && (number.unit === '' || /^(m|ft)$/i.test(number.unit))) return { value: number.value, axis: null, isSexagesimal: false };
+  const angle = readAngle(cell, mark);
+  return { value: angle.degrees, axis: angle.axis, isSexagesimal: angle.isSexagesimal };
+}
+
+interface Checked {
+  columns: PositionColumns;
+  a: number;
+  b: number;
+  width: number;
+}
+
+function whyAside(cells: readonly string[], { columns, a, b, width }: Checked): string | null {
+  if (cells.length < Math.max(columns.x, columns.y) + 1) return 'too few cells';
+  if (cells.length > width && cells.slice(width).some((cell) => cell !== '')) return 'too many cells';
+  if (cells[columns.x] === '' || cells[columns.y] === '') return 'no position';
+  if (Number.isNaN(a) || Number.isNaN(b)) return 'position is not a number';
+  return a === 0 && b === 0 ? 'position is 0, 0' : null;
+}

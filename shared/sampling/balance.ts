@@ -4,7 +4,7 @@ import type { Units } from './pivotal.ts';
 export interface Spread {
   /**
    * Mean of (v - 1)², v = sum of the inclusion probabilities of the units nearest to a sampled unit, ties split
-   * (Stevens & Olsen 2004 as used by Grafström et al. 2012). 0 is best; a simple random sample of vines is near 0.25.
+   * (Stevens & Olsen 2004 as used by Grafström et al. 2012). 0 is best; a simple random sample of 12 of 60 vines has about 0.25.
    */
   readonly balance: number;
   /** Mean over all units of the squared distance to the nearest sampled unit, m². Sees what the balance cannot: samples in one row. */

@@ -1,3 +1,4 @@
+import { AnalysisError } from '../analysis/analysisError.ts';
 import type { XY } from '../geo/coordinates.ts';
 import { type RowFrame, toAlongAcross } from '../geo/rowFrame.ts';
 import type { PieceXY, RowsXY, RowXY } from '../geo/rowsLayout.ts';
@@ -27,6 +28,7 @@ export interface BlockAlleys {
 }
 
 export function alleysOfRows({ frame, rows }: RowsXY, options: AlleyOptions = {}): BlockAlleys {
+  if (rows.length === 0) throw new AnalysisError('no-rows', 'The block has no rows; build its rows before planning a walk.');
   const shut = shutAlleysOf(rows.length, options);
   const placed = rows.map((row) => stretchesOf(frame, row));
   const whole = Array.from({ length: rows.length + 1 }, (_, j) => alleyBetween(rows, placed, j));
@@ -62,7 +64,7 @@ export interface VineToVisit {
   readonly side?: 'either' | 'low' | 'high';
 }
 
-/** The alleys from which a vine can be served, shut ones left out, and its place along them. */
+/** The alleys from which a vine can be served, shut ones left out, and its place along them: NaN when there is no such vine. */
 export function walkTargetOf({ frame, rows }: RowsXY, vine: VineToVisit, options: AlleyOptions = {}): WalkTarget {
   const beside = { either: [vine.rowIndex, vine.rowIndex + 1], low: [vine.rowIndex], high: [vine.rowIndex + 1] }[vine.side ?? 'either'];
   const shut = shutAlleysOf(rows.length, options);
@@ -79,7 +81,10 @@ function shutAlleysOf(rowCount: number, { outerAlleys = true, shutAlleys = [] }:
 type Stretch = readonly [fromT: number, toT: number];
 
 function stretchesOf(frame: RowFrame, row: RowXY): Stretch[] {
-  return row.pieces.map((piece): Stretch => [alongOf(frame, piece.fromXY), alongOf(frame, piece.toXY)]);
+  return row.pieces.map((piece): Stretch => {
+    const ts = [piece.fromXY, ...piece.bendsXY, piece.toXY].map((xy) => alongOf(frame, xy));
+    return [Math.min(...ts), Math.max(...ts)];
+  });
 }
 
 function alongOf(frame: RowFrame, xy: XY): number {

@@ -2,11 +2,13 @@ import { AnalysisError } from '../analysis/analysisError.ts';
 import type { XY } from '../geo/coordinates.ts';
 import { fromAlongAcross, type RowFrame } from '../geo/rowFrame.ts';
 import type { RowsXY } from '../geo/rowsLayout.ts';
+import { firstOrdinal, vinesAlong } from '../geo/vines.ts';
 import { type Split, splitWalk } from './splitWalk.ts';
 import { shortestWalk, type Walk, type WalkRequest } from './walk.ts';
 import { type AlleyOptions, alleysOfRows, type BlockAlleys, type VineToVisit, walkTargetOf } from './walkAlleys.ts';
 import type { AlleyLayout, WalkEdge, WalkNode, WalkPlace } from './walkLayout.ts';
 import { placeOfGate } from './walkPlaces.ts';
+import { type SheetInput, sheetLines, type SheetLine } from './walkSheet.ts';
 import { type PacedGround, secondsAlong, walkTime } from './walkTime.ts';
 
 /** A walk through a block's rows. */
@@ -57,6 +59,19 @@ export function shareBlockWalk(request: BlockWalkRequest, team: { readonly peopl
   const split = splitWalk({ targetCount: order.length, people: team.people, loadOf });
   const bounds = [0, ...split.cuts, order.length];
   return { ...split, walks: bounds.slice(1).map((to, i) => walkVines(request, alleys, order.slice(bounds[i]!, to))) };
+}
+
+/** The crew sheet of a walk in a block, with the zone of each vine of the request where bags are made by zone. */
+export function sheetOfBlock({ rows, vines }: Pick<BlockWalkRequest, 'rows' | 'vines'>, { walk, layout }: BlockWalk, zoneOf?: (vine: number) => number): SheetLine[] {
+  const known = new Map<number, ReturnType<SheetInput['vinesOfRow']>>();
+  const vinesOfRow: SheetInput['vinesOfRow'] = (rowIndex) => {
+    const row = rows.rows[rowIndex]!;
+    const found = known.get(rowIndex) ?? { firstOrdinal: firstOrdinal(row), alongT: vinesAlong(rows.frame, row) };
+    known.set(rowIndex, found);
+    return found;
+  };
+  const targets = vines.map((vine, i) => (zoneOf === undefined ? vine : { ...vine, zone: zoneOf(i) }));
+  return sheetLines({ walk, alleys: layout.alleys, targets, vinesOfRow });
 }
 
 function inRowOrder(vines: readonly VineToVisit[]): number[] {

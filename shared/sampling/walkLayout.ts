@@ -73,7 +73,8 @@ export interface WalkNetwork {
 export function checkOnLayout(layout: AlleyLayout, targets: readonly WalkTarget[], places: readonly WalkPlace[]): void {
   const check = (alley: number, t: number | null, what: string): void => {
     const found = layout.alleys[alley];
-    if (found === undefined || (t !== null && (t < found.bottomT - 1e-6 || t > found.topT + 1e-6))) {
+    const isOutside = found === undefined || (t !== null && !(t >= found.bottomT - 1e-6 && t <= found.topT + 1e-6));
+    if (isOutside) {
       throw new AnalysisError('walk-off-layout', `${what} lies outside alley ${alley + 1} of ${layout.alleys.length}; build the walk from the rows as they are now.`);
     }
   };

@@ -123,6 +123,17 @@ describe('a whole block', () => {
     expect(changed / vines.count).toBeLessThan(0.01);
   });
 
+  it('given memberships, a row goes to the zone its vines belong to most, not to the one with most labels', () => {
+    // in every row 21 vines lean to zone 1 by a hair and 19 are surely of zone 2
+    const membership = Float32Array.from({ length: 2 * vines.count }, (_, at) => {
+      const inOne = vines.ordinal[at >> 1]! <= 21 ? 0.51 : 0.05;
+      return at % 2 === 0 ? inOne : 1 - inOne;
+    });
+    const leaning = Uint8Array.from({ length: 6000 }, (_, cell) => (59.5 - Math.floor(cell / 100) < 31.5 ? 1 : 2));
+    expect(snapToRows({ grid, labels: leaning, rows, vines }, { mode: 'wholeRow' }).vineLabels.every((label) => label === 1)).toBe(true);
+    expect(snapToRows({ grid, labels: leaning, rows, vines }, { mode: 'wholeRow', membership }).vineLabels.every((label) => label === 2)).toBe(true);
+  });
+
   it('every cell keeps a label where it had one and none where it had none', () => {
     const holed = labels.map((label, cell) => (cell % 7 === 0 ? 0 : label));
     const snapped = snapToRows({ grid, labels: holed, rows, vines }, { mode: 'partRow' });

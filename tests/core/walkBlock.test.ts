@@ -6,7 +6,7 @@ import { layRows, type RowsXY } from '../../shared/geo/rowsLayout.ts';
 import { vineTable, vineXY } from '../../shared/geo/vines.ts';
 import { drawTargets } from '../../shared/sampling/targets.ts';
 import { alleysOfRows } from '../../shared/sampling/walkAlleys.ts';
-import { shareBlockWalk, walkBlock } from '../../shared/sampling/walkBlock.ts';
+import { shareBlockWalk, sheetOfBlock, walkBlock } from '../../shared/sampling/walkBlock.ts';
 import { placeOfGate } from '../../shared/sampling/walkPlaces.ts';
 
 const ring = (...corners: XY[]): MultiPolygonXY => [[[...corners, corners[0]!]]];
@@ -100,6 +100,30 @@ describe('a walk in a block', () => {
     const kept = walkBlock({ rows, vines, gateXY: [25, 4], ground: level, alleys: { shutAlleys: [10, 11] } });
     expect(kept.walk.stops.map(({ alley }) => alley).sort((a, b) => a - b)).toEqual([9, 12]);
     expect(kept.walk.steps.some(({ kind, from }) => kind === 'alley' && (from.alley === 10 || from.alley === 11))).toBe(false);
+  });
+
+  it('its sheet counts the vines ahead from the end of the row where one goes in', () => {
+    // rows run from y = 4 to 56 with 34 vines 1.5 m apart, the first at 5.25
+    const vines = [{ rowIndex: 10, ordinal: 20 }, { rowIndex: 10, ordinal: 9 }, { rowIndex: 30, ordinal: 2 }, { rowIndex: 30, ordinal: 33 }];
+    const lines = sheetOfBlock({ rows, vines }, walkBlock({ rows, vines, gateXY: [0, 4], ground: level }), (vine) => (vine < 2 ? 1 : 2));
+    const count = rows.rows[10]!.vineCount;
+    expect(count).toBe(34);
+    for (const { enterBy, ordinal, ahead, aheadFrom } of lines.filter((line) => line.aheadFrom === 'entry')) {
+      expect([enterBy, ahead, aheadFrom]).toEqual([enterBy, enterBy === 'start' ? ordinal : count + 1 - ordinal, 'entry']);
+    }
+    expect(lines.some((line) => line.aheadFrom === 'lastVine' && line.ahead === 11)).toBe(true);
+    expect(lines.filter(({ opensZone }) => opensZone)).toHaveLength(2);
+  });
+
+  it('a block without rows is told to build them', () => {
+    expect(() => walkBlock({ rows: { ...rows, rows: [] }, vines: [], gateXY: [0, 0] })).toThrow(/build its rows/);
+  });
+
+  it('surveyed rows that bend are walked as well', () => {
+    const bent = { ...rows, rows: rows.rows.map((row) => ({ ...row, pieces: row.pieces.map((piece) => ({ ...piece, bendsXY: [[piece.fromXY[0] + 1, 30] as XY] })) })) };
+    const { walk } = walkBlock({ rows: bent, vines: [{ rowIndex: 4, ordinal: 30 }], gateXY: [0, 4], ground: level });
+    expect(walk.stops).toHaveLength(1);
+    expect(walk.lengthM).toBeGreaterThan(0);
   });
 
   it('unknown vines and vines between shut alleys are named', () => {

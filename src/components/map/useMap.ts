@@ -1,0 +1,62 @@
+import { Map as MlMap, setWorkerUrl, type GeoJSONSource } from 'maplibre-gl';
+import workerUrl from 'maplibre-gl/dist/maplibre-gl-worker.mjs?url';
+import 'maplibre-gl/dist/maplibre-gl.css';
+import type { FeatureCollection } from 'geojson';
+import { computed, markRaw, onBeforeUnmount, onMounted, shallowRef, watch, type InjectionKey, type Ref, type ShallowRef } from 'vue';
+import { mapLayers, mapStyle, type MapInk, type MapSource } from './mapStyle.ts';
+import { useTheme, useTokens } from '../../composables/useTheme.ts';
+
+// The worker is a file of our own build; without its address shapes are never drawn.
+setWorkerUrl(workerUrl);
+
+/** The map once it can be drawn on, for parts that sit inside it. */
+export const mapKey: InjectionKey<ShallowRef<MlMap | null>> = Symbol('map');
+
+/** Makes the map in the given element, keeps its colours in step with the theme, and takes it down again. */
+export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => [number, number, number, number] | null }) {
+  const map = shallowRef<MlMap | null>(null);
+  const failed = shallowRef(false);
+  const { theme } = useTheme();
+  const token = useTokens();
+  const ink = computed<MapInk>(() => ({
+    land: token('land'), ground: token('ground'), ink: token('ink'), contour: token('contour'), contourIndex: token('contour-index'), water: token('water'),
+    track: token('track'), trackEdge: token('track-edge'), zoneLine: token('zone-line'), brick: token('brick'), sky: token('sky'), amber: token('amber'), muted: token('muted'),
+  }));
+  let made: MlMap | null = null;
+
+  onMounted(() => {
+    const bounds = options.start();
+    try {
+      made = new MlMap({
+        container: container.value!,
+        style: mapStyle(ink.value),
+        ...(bounds ? { bounds, fitBoundsOptions: { padding: 56 } } : { center: [0, 30], zoom: 1 }),
+        attributionControl: false, dragRotate: false, pitchWithRotate: false, touchPitch: false, maxZoom: 22, fadeDuration: 0, locale: { 'Map.Title': options.label() },
+      });
+    } catch {
+      // No WebGL on this device: the ledger holds every fact, and the view says that the map cannot be drawn.
+      failed.value = true;
+      return;
+    }
+    made.touchZoomRotate.disableRotation();
+    made.keyboard.disableRotation();
+    made.once('load', () => (map.value = markRaw(made!)));
+  });
+  watch(theme, () => map.value && recolour(map.value, ink.value));
+  onBeforeUnmount(() => {
+    map.value = null;
+    made?.remove();
+  });
+  return { map, ink, failed };
+}
+
+function recolour(map: MlMap, ink: MapInk): void {
+  for (const layer of mapLayers(ink)) {
+    for (const [name, value] of Object.entries(layer.paint ?? {})) map.setPaintProperty(layer.id, name as never, value as never);
+  }
+}
+
+/** Puts features into one of the style's sources, now and whenever they change. */
+export function useMapData(map: ShallowRef<MlMap | null>, source: MapSource, features: () => FeatureCollection): void {
+  watch([map, features], ([ready, data]) => ready?.getSource<GeoJSONSource>(source)?.setData(data), { immediate: true });
+}

@@ -1,0 +1,38 @@
+import type { RampName } from '../../shared/catalog/layerTypes.ts';
+import { channels, classColour, rampColour } from './colours.ts';
+
+export interface CellGrid {
+  readonly cells: ArrayLike<number>;
+  readonly columns: number;
+  readonly rows: number;
+  readonly ramp: RampName;
+  readonly range: readonly [low: number, high: number];
+}
+
+const shades = 256;
+
+/** Cells as RGBA pixels: ramp colours between the two ends of the range, class colours for classes; NaN stays clear. */
+export function cellPixels({ cells, columns, rows, ramp, range: [low, high] }: CellGrid): Uint8ClampedArray<ArrayBuffer> {
+  const pixels = new Uint8ClampedArray(columns * rows * 4);
+  const table = Array.from({ length: shades }, (_, shade) => rampColour(ramp, shade / (shades - 1)));
+  const span = high > low ? high - low : 1;
+  for (let cell = 0; cell < columns * rows; cell++) {
+    const value = cells[cell]!;
+    if (Number.isNaN(value)) continue;
+    const share = Math.min(1, Math.max(0, (value - low) / span));
+    const colour = ramp === 'classes' ? channels(classColour(value)) : table[Math.round(share * (shades - 1))]!;
+    pixels.set([colour[0], colour[1], colour[2], 255], cell * 4);
+  }
+  return pixels;
+}
+
+/** Pixels as a data address for an image on the map; null where there is no canvas. */
+export function pixelsToUrl(pixels: Uint8ClampedArray<ArrayBuffer>, columns: number, rows: number): string | null {
+  const canvas = document.createElement('canvas');
+  canvas.width = columns;
+  canvas.height = rows;
+  const pen = canvas.getContext('2d');
+  if (!pen) return null;
+  pen.putImageData(new ImageData(pixels, columns, rows), 0, 0);
+  return canvas.toDataURL('image/png');
+}

@@ -1,0 +1,84 @@
+import type { Point } from 'geojson';
+import { toUtm } from '../../shared/geo/utm.ts';
+import { Estate } from '../models/Estate.ts';
+import { asGeoJson } from '../models/geometry.ts';
+import { Reading } from '../models/Reading.ts';
+import { indexOfVine, type BlockVines } from './blockVines.ts';
+
+/** A reading with the zone its vine is in today. */
+export interface ZonedReading {
+  id: string;
+  measureCode: string;
+  value: number;
+  samples: number;
+  /** 0 when the vine is in no zone. */
+  zone: number;
+  /** Day of the visit in the estate's own time. */
+  visit: string;
+  vineKey: string;
+  roundId: string | null;
+  seasonId: string;
+  state: Reading['state'];
+  excludedReason: string | null;
+  /** Index in the vine table, or -1. */
+  vine: number;
+}
+
+/**
+ * Readings of a block with today's zone of their vines; corrected readings are replaced by their corrections.
+ * A reading without row and number is given to the vine nearest to its position, within three metres.
+ */
+export async function zonedReadings(estateId: string, options: { ground: BlockVines; zoneOf: Uint8Array; seasonId?: string }): Promise<ZonedReading[]> {
+  const { ground, zoneOf } = options;
+  const query = Reading.query()
+    .where('readings.estateId', estateId)
+    .where('readings.blockId', ground.block.id)
+    .whereNotExists(Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId'))
+    .orderBy('takenAt')
+    .select('readings.*', asGeoJson('readings.position').as('position'));
+  if (options.seasonId) query.where('readings.seasonId', options.seasonId);
+  const [rows, estate] = await Promise.all([query, Estate.query().findById(estateId).throwIfNotFound()]);
+  const dayOf = dayIn(estate.timeZone);
+  return rows.map((row) => {
+    const vine = vineOf(ground, row);
+    return {
+      id: row.id,
+      measureCode: row.measureCode,
+      value: row.value,
+      samples: row.samples,
+      zone: vine < 0 ? 0 : zoneOf[vine]!,
+      visit: dayOf(row.takenAt),
+      vineKey: vine < 0 ? row.id : String(vine),
+      roundId: row.roundId,
+      seasonId: row.seasonId,
+      state: row.state,
+      excludedReason: row.excludedReason,
+      vine,
+    };
+  });
+}
+
+const reachM = 3;
+
+function vineOf(ground: BlockVines, row: Reading): number {
+  const byRow = indexOfVine(ground, row.rowId, row.ordinal);
+  const position = row.position as Point | null;
+  if (byRow >= 0 || position === null) return byRow;
+  const [x, y] = toUtm([position.coordinates[0]!, position.coordinates[1]!], ground.block.epsg);
+  let best = -1;
+  let bestSquare = reachM * reachM;
+  for (let vine = 0; vine < ground.vines.count; vine++) {
+    const square = (ground.vines.x[vine]! - x) ** 2 + (ground.vines.y[vine]! - y) ** 2;
+    if (square < bestSquare) {
+      bestSquare = square;
+      best = vine;
+    }
+  }
+  return best;
+}
+
+/** Calendar day of an instant in a time zone, as yyyy-mm-dd. */
+function dayIn(timeZone: string): (at: Date) => string {
+  const format = new Intl.DateTimeFormat('en-CA', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit' });
+  return (at) => format.format(at);
+}

@@ -1,0 +1,108 @@
+import { groupBy } from '../../../shared/groupBy.ts';
+import type { BlockResult, MeasuredMean, ResultsView, ZoneResult } from '../../../shared/contracts/results.ts';
+import { howManyMore, intervalOf, meanEstimate, type Estimate } from '../../../shared/sampling/precision.ts';
+import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';
+import { summarise } from '../../../shared/sampling/variances.ts';
+import type { Access } from '../../access/access.ts';
+import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Zone } from '../../models/Zone.ts';
+import { Zoning } from '../../models/Zoning.ts';
+
+/**
+ * What the readings of a season say of each zone: mean and range a measure and visit, and how many readings are missing.
+ * Readings belong to vines; which zone a vine is in follows from the zoning asked for, so history stays true when zones change.
+ */
+export async function zoneResults(access: Access, zoningId: string, options: { seasonId?: string } = {}): Promise<ResultsView> {
+  const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  const zoneOf = zonesOfVines(ground, zoning);
+  const zones = await Zone.query().where({ estateId: access.estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'areaM2');
+  const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
+  const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId });
+  const bearing = countBearing(ground, zoneOf);
+  const measured = measures.filter((measure) => readings.some((reading) => reading.measureCode === measure.code));
+  const inZones = readings.filter((reading) => reading.zone > 0);
+  const values = measured.flatMap((measure) => resultsOf(measure, inZones.filter((reading) => reading.measureCode === measure.code), bearing));
+  return {
+    zoningId,
+    blockId: zoning.blockId,
+    blockName: ground.block.name,
+    zoningNumber: zoning.number,
+    zones: zones.map((zone) => ({ id: zone.id, number: zone.number, name: zone.name, areaHa: zone.areaM2 / 10_000, vines: count(zoneOf, zone.number), bearing: bearing.get(zone.number) ?? 0 })),
+    measures: measured.map(({ code, name, unit, decimals, marginKind, margin, confidence, secondsPerSample }) => ({ code, name, unit, decimals, marginKind, margin, confidence, secondsPerSample })),
+    visits: visitsOf(inZones),
+    values,
+    block: blockResults(values, bearing),
+    outside: readings.length - inZones.length,
+  };
+}
+
+function resultsOf(measure: MeasureRecord, readings: ZonedReading[], bearing: Map<number, number>): ZoneResult[] {
+  const groups = groupBy(readings, (reading) => `${reading.zone}|${reading.visit}`);
+  return [...groups.values()].map((group) => {
+    const counted = group.filter((reading) => reading.excludedReason === null);
+    const perVine = vineMeans(counted);
+    const populationSize = Math.max(bearing.get(group[0]!.zone) ?? Infinity, perVine.length);
+    const mean = measuredMean(perVine, { populationSize, confidence: measure.confidence });
+    const margin = measure.marginKind === 'absolute' ? measure.margin : Math.abs(mean.mean) * measure.margin;
+    const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: Math.max(mean.sd, 1e-9), margin, confidence: measure.confidence, populationSize });
+    return {
+      ...mean,
+      zone: group[0]!.zone,
+      measure: measure.code,
+      visit: group[0]!.visit,
+      margin,
+      enough: missing?.enough ?? false,
+      more: missing?.more ?? null,
+      provisional: counted.filter((reading) => reading.state === 'provisional').length,
+      leftOut: group.length - counted.length,
+    };
+  });
+}
+
+/** One value a vine: two readings of a vine on one visit are repeats, not two vines. A reading of several samples weighs as one vine. */
+function vineMeans(readings: ZonedReading[]): number[] {
+  return [...groupBy(readings, (reading) => reading.vineKey).values()].map((same) => same.reduce((sum, reading) => sum + reading.value, 0) / same.length);
+}
+
+function measuredMean(values: number[], { populationSize, confidence }: { populationSize: number; confidence: number }): MeasuredMean {
+  const { n, mean, sd } = summarise(values);
+  const estimate = meanEstimate({ n, mean, sd, populationSize });
+  return { n, mean, sd: n < 2 ? null : sd, confidence, ...rangeOf(estimate, confidence) };
+}
+
+function rangeOf(estimate: Estimate, confidence: number): Pick<MeasuredMean, 'halfWidth' | 'standardError' | 'df'> {
+  const { halfWidth, standardError, df } = intervalOf(estimate, confidence);
+  const known = !Number.isNaN(halfWidth);
+  return { halfWidth: known ? halfWidth : null, standardError: known ? standardError : null, df: known && Number.isFinite(df) ? df : null };
+}
+
+/** The block's mean over its zones by bearing vines (stratified), where at least two readings a zone say something of the spread. */
+function blockResults(values: ZoneResult[], bearing: Map<number, number>): BlockResult[] {
+  return [...groupBy(values, (value) => `${value.measure}|${value.visit}`).values()].map((group) => {
+    const told = group.filter((value) => value.n > 0);
+    const estimate = stratifiedEstimate(told.map((value) => ({ weight: bearing.get(value.zone) ?? 0, n: value.n, mean: value.mean, variance: value.sd === null ? Number.NaN : value.sd ** 2 })));
+    const zonesWithout = [...bearing.keys()].filter((zone) => !told.some((value) => value.zone === zone));
+    return { measure: group[0]!.measure, visit: group[0]!.visit, n: told.reduce((sum, value) => sum + value.n, 0), mean: estimate.value, sd: null, confidence: group[0]!.confidence, zonesWithout, ...rangeOf(estimate, group[0]!.confidence) };
+  });
+}
+
+function visitsOf(readings: ZonedReading[]): ResultsView['visits'] {
+  return [...groupBy(readings, (reading) => reading.visit).entries()]
+    .map(([key, group]) => ({ key, on: key, roundIds: [...new Set(group.flatMap((reading) => (reading.roundId ? [reading.roundId] : [])))], seasonId: group[0]!.seasonId }))
+    .sort((a, b) => a.on.localeCompare(b.on));
+}
+
+function countBearing(ground: BlockVines, zoneOf: Uint8Array): Map<number, number> {
+  const counts = new Map<number, number>();
+  zoneOf.forEach((zone, vine) => {
+    if (zone > 0 && isBearing(ground.states[vine]!)) counts.set(zone, (counts.get(zone) ?? 0) + 1);
+  });
+  return counts;
+}
+
+function count(zoneOf: Uint8Array, zone: number): number {
+  return zoneOf.reduce((sum, of) => sum + (of === zone ? 1 : 0), 0);
+}

@@ -1,8 +1,8 @@
+import { combineLinearly } from './combineEstimates.ts';
 import { ceilGuarded } from './sampleSize.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { intervalOf, type Estimate, type Interval, type SampleFacts } from './precision.ts';
 import { criticalT, criticalZ, normalUpperQuantile } from './quantiles.ts';
-import { combineLinearly } from './stratified.ts';
 import { summarise } from './variances.ts';
 
 /**

@@ -36,26 +36,3 @@ export function stratifiedEstimate(zones: readonly ZoneSample[]): Estimate {
   const df = variance === 0 ? Infinity : (variance * variance) / satterthwaite;
   return { value, standardError: Math.sqrt(variance), df };
 }
-
-/** Sum of estimates with fixed weights that add up to 1, Satterthwaite degrees of freedom. */
-export function weightedEstimate(parts: readonly { readonly weight: number; readonly estimate: Estimate }[]): Estimate {
-  const total = parts.reduce((sum, part) => sum + part.weight, 0);
-  if (!(total > 0)) throw new AnalysisError('no_weight', 'A weighted mean needs weights that add up to more than 0.');
-  return combineLinearly(parts.map((part) => ({ factor: part.weight / total, estimate: part.estimate })));
-}
-
-/** Σ factor·estimate of independent estimates, with the variance and degrees of freedom of the sum. */
-export function combineLinearly(terms: readonly { readonly factor: number; readonly estimate: Estimate }[]): Estimate {
-  let value = 0;
-  let variance = 0;
-  let satterthwaite = 0;
-  for (const { factor, estimate } of terms) {
-    if (factor === 0) continue;
-    value += factor * estimate.value;
-    const part = (factor * estimate.standardError) ** 2;
-    variance += part;
-    if (part > 0) satterthwaite += (part * part) / estimate.df;
-  }
-  const df = satterthwaite === 0 ? Infinity : (variance * variance) / satterthwaite;
-  return { value, standardError: Math.sqrt(variance), df };
-}

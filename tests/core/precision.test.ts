@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { combineLinearly, stratifiedEstimate, weightedEstimate } from '../../shared/sampling/stratified.ts';
+import { combineLinearly, multiplyEstimates, weightedEstimate } from '../../shared/sampling/combineEstimates.ts';
+import { stratifiedEstimate } from '../../shared/sampling/stratified.ts';
 import { howManyMore, intervalOf, meanInterval } from '../../shared/sampling/precision.ts';
 import { summarise } from '../../shared/sampling/variances.ts';
 
@@ -123,5 +124,15 @@ describe('mean over zones', () => {
     expect(difference.value).toBe(1);
     expectRelative(difference.standardError, 0.5, 1e-12);
     expect(difference.df).toBe(Infinity);
+  });
+
+  it('multiplies estimates with their relative errors added in squares', () => {
+    // By hand: 3 % and 4 % make 5 %
+    const product = multiplyEstimates([
+      { value: 20, standardError: 0.6, df: Infinity },
+      { value: 50, standardError: 2, df: Infinity },
+    ]);
+    expect(product.value).toBe(1000);
+    expectRelative(product.standardError, 50, 1e-12);
   });
 });

@@ -43,9 +43,6 @@ export const MAX_CELLS = 16_000_000;
  * Example: a 100 m × 60 m rectangle on whole multiples of 2 m gives 50 × 30 cells, all with share 1.
  */
 export function defineGrid(boundaryLonLat: MultiPolygonLonLat, cellSizeM: number): Grid {
-  if (!(cellSizeM > 0) || !Number.isFinite(cellSizeM)) {
-    throw new AnalysisError('cell-size', `A cell size of ${cellSizeM} m cannot be used; give a number of metres above 0.`);
-  }
   const centroid = polygonsCentroid(boundaryLonLat);
   const epsg = utmEpsg(centroid);
   return gridOfOutline(polygonsToUtm(boundaryLonLat, epsg), epsg, cellSizeM);
@@ -78,6 +75,9 @@ export interface GridFrame {
 }
 
 function frameOf(outlineXY: MultiPolygonXY, cellSizeM: number): GridFrame {
+  if (!(cellSizeM > 0) || !Number.isFinite(cellSizeM)) {
+    throw new AnalysisError('cell-size', `A cell size of ${cellSizeM} m cannot be used; give a number of metres above 0.`);
+  }
   const [minX, minY, maxX, maxY] = boundsOf(outlineXY.flat());
   if (!(maxX > minX && maxY > minY)) throw new AnalysisError('outline-empty', 'The outline has no area; draw a ring of at least three corners.');
   // A tenth of a millimetre of slack keeps an edge drawn on a cell border from adding an empty row of cells.

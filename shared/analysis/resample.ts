@@ -27,7 +27,9 @@ export interface WindowedSink extends PixelSink {
 const METHODS: Record<ResampleMethod, (grid: GridFrame, frame: RasterFrame, options: ResampleOptions) => WindowedSink> = {
   mean: (grid, frame, options) => new CellSums(grid, frame, options),
   nearest: (grid, frame, options) => new NearestCells(grid, frame, options),
-  surface: (grid, frame, options) => (pixelsPerCell(grid, frame) < 1.5 ? new SmoothCells(grid, frame, options) : new CellSums(grid, frame, options)),
+  surface: (grid, frame, options) =>
+    // By area even for fine pixels: counting by centres would shake a slope by half a pixel from cell to cell.
+    pixelsPerCell(grid, frame) < 1.5 ? new SmoothCells(grid, frame, options) : new CellSums(grid, frame, { ...options, weighting: 'area' }),
 };
 
 export function resampler(grid: GridFrame, frame: RasterFrame, options: ResampleOptions): WindowedSink {

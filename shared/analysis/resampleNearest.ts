@@ -7,6 +7,9 @@ import { cellsToPixels, pixelWindow, type PixelWindow, type RasterFrame } from '
 import { readPixel } from './resampleSumsCentre.ts';
 import { storedNoData, type PixelSink, type PixelTile } from './resampleTile.ts';
 
+/** A centre on the edge of two pixels belongs to the right or lower one, rounding aside. */
+const ON_EDGE = 1e-7;
+
 export interface NearestOptions {
   readonly bands: number;
   readonly noData?: readonly (number | null)[];
@@ -36,8 +39,8 @@ export class NearestCells implements PixelSink {
     for (let row = 0; row < grid.rows; row++) {
       map.row({ u: 0.5, v: row + 0.5, count: grid.cols }, places);
       for (let col = 0; col < grid.cols; col++) {
-        this.pixelCol[row * grid.cols + col] = Math.floor(places[2 * col]!);
-        this.pixelRow[row * grid.cols + col] = Math.floor(places[2 * col + 1]!);
+        this.pixelCol[row * grid.cols + col] = Math.floor(places[2 * col]! + ON_EDGE);
+        this.pixelRow[row * grid.cols + col] = Math.floor(places[2 * col + 1]! + ON_EDGE);
       }
       const pixelRows = this.pixelRow.subarray(row * grid.cols, (row + 1) * grid.cols);
       this.rowReach[2 * row] = pixelRows.reduce((least, pixel) => Math.min(least, pixel));

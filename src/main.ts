@@ -1,0 +1,49 @@
+import { createPinia } from 'pinia';
+import PrimeVue from 'primevue/config';
+import { createApp } from 'vue';
+import App from './App.vue';
+import { startTheme, useTheme } from './composables/useTheme.ts';
+import { watchForUpdate } from './lib/appUpdate.ts';
+import { whenContacted, whenSignedOut } from './lib/http.ts';
+import { deviceLanguage, i18n, showLanguage } from './lib/i18n.ts';
+import { readStored } from './lib/deviceStore.ts';
+import type { Language } from './lib/format.ts';
+import { primeVueOptions } from './lib/theme.ts';
+import { createAppRouter } from './router/index.ts';
+import { useContactStore } from './stores/contact.ts';
+import { useNoticesStore } from './stores/notices.ts';
+import { useSessionStore } from './stores/session.ts';
+import './assets/fonts.css';
+import './assets/tokens.css';
+import './assets/base.css';
+import './assets/forms.css';
+import './assets/page.css';
+
+async function start(): Promise<void> {
+  startTheme();
+  const app = createApp(App);
+  app.use(createPinia()).use(i18n).use(PrimeVue, primeVueOptions);
+  const [session, contact] = [useSessionStore(), useContactStore()];
+  whenContacted((reached) => contact.note(reached, new Date()));
+
+  // Without an answer the door still opens and says so; crews go on with what their phone holds.
+  await session.load().catch(() => undefined);
+  if (session.person) useTheme().choose(session.person.theme);
+  await showLanguage(session.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
+
+  const router = createAppRouter(session);
+  whenSignedOut(() => {
+    if (session.person === null) return;
+    session.forget();
+    void router.push({ name: 'signIn', query: { to: router.currentRoute.value.fullPath } });
+  });
+  app.use(router);
+  await router.isReady().catch(() => undefined);
+  app.mount('#app');
+
+  watchForUpdate((load) => {
+    useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: load } });
+  });
+}
+
+void start();

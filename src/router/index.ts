@@ -1,0 +1,49 @@
+import { createRouter, createWebHistory, type RouteLocationNormalized, type RouteRecordRaw, type Router } from 'vue-router';
+import type { Permission, Reach } from '../../shared/catalog/permissions.ts';
+import type { useSessionStore } from '../stores/session.ts';
+import { routePlaces, type Frame, type RouteName } from './routeNames.ts';
+import { views } from './views.ts';
+
+declare module 'vue-router' {
+  interface RouteMeta {
+    frame: Frame;
+    needs?: readonly [Permission, Reach];
+    under?: RouteName;
+  }
+}
+
+type SessionStore = ReturnType<typeof useSessionStore>;
+
+function records(): RouteRecordRaw[] {
+  return (Object.keys(routePlaces) as RouteName[]).flatMap((name) => {
+    const view = views[name];
+    const { path, frame, ...rest }: { path: string; frame: Frame; needs?: readonly [Permission, Reach]; under?: string } = routePlaces[name];
+    return view ? [{ name, path, component: view, props: true, meta: { frame, ...rest } as RouteRecordRaw['meta'] & { frame: Frame } }] : [];
+  });
+}
+
+/** The router, with the guard that asks for sign-in, keeps the estate in step and turns people away from what they may not see. */
+export function createAppRouter(session: SessionStore): Router {
+  const router = createRouter({ history: createWebHistory(), routes: records(), scrollBehavior: (to, from, saved) => saved ?? (to.name === from.name ? false : { top: 0 }) });
+  router.beforeEach((to) => guard(to, session, router));
+  return router;
+}
+
+function guard(to: RouteLocationNormalized, session: SessionStore, router: Router) {
+  if (to.name === 'signIn' || to.name === 'join' || to.name === 'notFound') return true;
+  if (session.person === null) return { name: 'signIn', query: to.fullPath === '/' ? {} : { to: to.fullPath } };
+  const estateId = to.params.estateId;
+  if (typeof estateId === 'string') {
+    if (!session.estates.some(({ id }) => id === estateId)) return { name: 'notFound', params: { rest: to.path.slice(1).split('/') } };
+    if (session.estate?.id !== estateId) session.chooseEstate(estateId);
+  }
+  const needs = to.meta.needs;
+  return needs && !session.can(...needs) ? firstPlace(session, router) : true;
+}
+
+/** Where a person starts: crew in the field, everybody else with what needs them today. */
+export function firstPlace(session: SessionStore, router: Router): { name: RouteName; params?: Record<string, string> } {
+  const wanted: RouteName[] = session.isCrewOnly ? ['fieldWork', 'today'] : ['today', 'estate', 'fieldWork'];
+  const name = wanted.find((one) => router.hasRoute(one));
+  return name && session.estate ? { name, params: { estateId: session.estate.id } } : { name: 'home' };
+}

@@ -1,0 +1,12 @@
+import type { Component } from 'vue';
+import type { RouteName } from './routeNames.ts';
+
+type LazyView = () => Promise<{ default: Component }>;
+
+/** The view of each place, loaded when it is first opened. A place without a line here does not exist yet and is not linked to. */
+export const views: Partial<Record<RouteName, LazyView>> = {
+  signIn: () => import('../views/door/SignInView.vue'),
+  join: () => import('../views/door/JoinView.vue'),
+  home: () => import('../views/door/HomeView.vue'),
+  notFound: () => import('../views/door/NotFoundView.vue'),
+};

@@ -1,0 +1,73 @@
+import { defineStore } from 'pinia';
+import { computed, ref, shallowRef } from 'vue';
+import type { z } from 'zod';
+import { may, type Permission, type Reach } from '../../shared/catalog/permissions.ts';
+import type { invitationAnswer } from '../../shared/contracts/people.ts';
+import type { personChange, Session, SessionEstate } from '../../shared/contracts/session.ts';
+import { readStored, writeStored } from '../lib/deviceStore.ts';
+import { http, setCsrfToken } from '../lib/http.ts';
+
+export type PersonChange = z.infer<typeof personChange>;
+export type InvitationAnswer = z.infer<typeof invitationAnswer>;
+
+const nobody: Session = { person: null, estates: [], csrfToken: '', demo: false };
+const strength: Record<Reach, number> = { read: 1, own: 2, propose: 3, do: 4 };
+
+/** Who is signed in, in which estate, and what they may do there. */
+export const useSessionStore = defineStore('session', () => {
+  const session = shallowRef<Session>(nobody);
+  const estateId = ref<string | null>(readStored<string>('estate'));
+  const isLoaded = ref(false);
+
+  const person = computed(() => session.value.person);
+  const estates = computed(() => session.value.estates);
+  const estate = computed<SessionEstate | null>(() => estates.value.find(({ id }) => id === estateId.value) ?? estates.value[0] ?? null);
+  /** People who only pick and sample get the field's screens. */
+  const isCrewOnly = computed(() => estate.value !== null && estate.value.roles.every((role) => role === 'crew'));
+
+  function take(next: Session): void {
+    session.value = next;
+    isLoaded.value = true;
+    setCsrfToken(next.csrfToken);
+  }
+
+  /** True when the person reaches at least so far in the current estate; the server decides, menus only mirror it. */
+  function can(action: Permission, atLeast: Reach = 'do'): boolean {
+    if (estate.value === null) return false;
+    const reach = estate.value.permissions[action];
+    return reach === undefined ? may(estate.value.roles, action, atLeast) : strength[reach] >= strength[atLeast];
+  }
+
+  async function load(): Promise<void> {
+    take(await http.get<Session>('/api/session'));
+  }
+
+  async function signIn(email: string, password: string): Promise<void> {
+    take(await http.post<Session>('/api/session', { email, password }));
+  }
+
+  async function signOut(): Promise<void> {
+    await http.delete('/api/session');
+    await load();
+  }
+
+  async function acceptInvitation(answer: InvitationAnswer): Promise<void> {
+    take(await http.post<Session>('/api/invitations/accept', answer));
+  }
+
+  async function changePerson(change: PersonChange): Promise<void> {
+    take(await http.patch<Session>('/api/session/person', change));
+  }
+
+  function chooseEstate(id: string): void {
+    estateId.value = id;
+    writeStored('estate', id);
+  }
+
+  /** The server no longer knows the session: keep the words of the page, forget the person. */
+  function forget(): void {
+    session.value = { ...nobody, csrfToken: session.value.csrfToken, demo: session.value.demo };
+  }
+
+  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, signIn, signOut, acceptInvitation, changePerson, chooseEstate, forget };
+});

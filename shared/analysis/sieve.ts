@@ -14,7 +14,7 @@ export interface SieveOptions {
 
 /** Cells that an area needs, rounded up: 0.05 ha at 2 m are 125 cells. */
 export function cellsForArea(areaHa: number, cellSizeM: number): number {
-  return Math.ceil((areaHa * 10_000) / (cellSizeM * cellSizeM) - 1e-9);
+  return Math.max(0, Math.ceil((areaHa * 10_000) / (cellSizeM * cellSizeM) - 1e-9));
 }
 
 /**

@@ -1,8 +1,8 @@
 /**
  * Slope, aspect and their parts from elevation cells. In: elevation in metres on a square grid, row 0 in the north, NaN
  * where missing. Out: cells. Cost: nine reads a cell. Window, north up: a b c / d e f / g h i.
- * Edges: a missing neighbour is continued in a straight line through the centre from the opposite one, so a plane keeps its
- * slope up to the edge; where both are missing the centre's own height stands in.
+ * Edges: a missing side is continued in a straight line through the centre from the opposite side, or takes the centre's
+ * height when both are missing; a missing corner is continued from its two sides. A plane keeps its slope up to the edge.
  */
 import type { Cells } from './grid.ts';
 
@@ -83,16 +83,30 @@ export function wetness(upslopeAreaPerM: number, slopeDeg: number): number {
 
 function fillWindow(window: Float64Array, { elevation, cols }: { elevation: Cells; cols: number }, cell: number): void {
   const col = cell % cols;
-  const centre = elevation[cell]!;
   for (let at = 0, from = cell - cols - 1; at < 9; at += 3, from += cols) {
     window[at] = col === 0 ? NaN : (elevation[from] ?? NaN);
     window[at + 1] = elevation[from + 1] ?? NaN;
     window[at + 2] = col === cols - 1 ? NaN : (elevation[from + 2] ?? NaN);
   }
-  for (let at = 0; at < 4; at++) {
-    const here = window[at]!;
-    const opposite = window[8 - at]!;
-    if (Number.isNaN(here)) window[at] = Number.isNaN(opposite) ? centre : 2 * centre - opposite;
-    if (Number.isNaN(opposite)) window[8 - at] = Number.isNaN(here) ? centre : 2 * centre - here;
-  }
+  let sum = 0;
+  for (let at = 0; at < 9; at++) sum += window[at]!;
+  if (Number.isNaN(sum)) bridgeGaps(window);
 }
+
+function bridgeGaps(window: Float64Array): void {
+  const centre = window[4]!;
+  for (const side of SIDES) {
+    const opposite = window[8 - side]!;
+    if (Number.isNaN(window[side]!)) window[side] = Number.isNaN(opposite) ? centre : 2 * centre - opposite;
+  }
+  for (const [corner, side, otherSide] of CORNERS) if (Number.isNaN(window[corner]!)) window[corner] = window[side]! + window[otherSide]! - centre;
+}
+
+/** Places in the window: b, d, f, h; and each corner with its two sides. */
+const SIDES = [1, 3, 5, 7] as const;
+const CORNERS = [
+  [0, 1, 3],
+  [2, 1, 5],
+  [6, 7, 3],
+  [8, 7, 5],
+] as const;

@@ -136,7 +136,7 @@ function scaled(cells: Float32Array, { scale, offset }: { scale: number; offset:
 
 function notOverlapping(understood: RasterUnderstood, grids: readonly Grid[]): ImportProblem {
   const km = Math.min(...grids.flatMap((grid) => understood.boundsLonLat!.map((corner) => distanceKm(corner, fromUtm([grid.x0 + (grid.cols * grid.cellSizeM) / 2, grid.y0 - (grid.rows * grid.cellSizeM) / 2], grid.epsg)))));
-  const shown = km < 10 ? km.toFixed(1) : String(Math.round(km));
+  const shown = km < 9.95 ? km.toFixed(1) : String(Math.round(km));
   return new ImportProblem({
     code: 'not-overlapping',
     fact: `It does not cover ${grids.length === 1 ? 'the block' : 'any of the blocks'}: it lies ${shown} km away.`,

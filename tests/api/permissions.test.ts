@@ -39,6 +39,18 @@ const doors: Door[] = [
   door('put', `/readings/${nobody}/exclusion`, 'outliers.exclude'),
   door('get', '/conflicts', 'readings.correct'),
   door('post', `/conflicts/${nobody}/settle`, 'readings.correct'),
+  door('get', `/zonings/${nobody}/results`, 'results.see', 'read'),
+  door('get', '/lots', 'lots.see', 'read'),
+  door('post', '/lots', 'lots.build', 'propose'),
+  door('patch', `/lots/${nobody}`, 'lots.build', 'propose'),
+  door('put', `/lots/${nobody}/parts`, 'lots.build', 'propose'),
+  door('post', `/lots/${nobody}/confirm`, 'lots.confirm', 'propose'),
+  door('delete', `/lots/${nobody}`, 'lots.build'),
+  door('post', '/scenarios', 'lots.build', 'propose'),
+  door('get', '/tanks', 'lots.see', 'read'),
+  door('post', '/tanks', 'lots.build'),
+  door('patch', `/tanks/${nobody}`, 'lots.build'),
+  door('delete', `/tanks/${nobody}`, 'lots.build'),
 ];
 
 let app: TestApp;

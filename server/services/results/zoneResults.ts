@@ -1,10 +1,10 @@
 import { groupBy } from '../../../shared/groupBy.ts';
 import type { BlockResult, MeasuredMean, ResultsView, ZoneResult } from '../../../shared/contracts/results.ts';
-import { howManyMore, intervalOf, meanEstimate, type Estimate } from '../../../shared/sampling/precision.ts';
+import { howManyMore, intervalOf, type Estimate } from '../../../shared/sampling/precision.ts';
 import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';
-import { summarise } from '../../../shared/sampling/variances.ts';
 import type { Access } from '../../access/access.ts';
 import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Zone } from '../../models/Zone.ts';
@@ -41,35 +41,31 @@ export async function zoneResults(access: Access, zoningId: string, options: { s
 
 function resultsOf(measure: MeasureRecord, readings: ZonedReading[], bearing: Map<number, number>): ZoneResult[] {
   const groups = groupBy(readings, (reading) => `${reading.zone}|${reading.visit}`);
-  return [...groups.values()].map((group) => {
+  return [...groups.values()].flatMap((group) => {
     const counted = group.filter((reading) => reading.excludedReason === null);
-    const perVine = vineMeans(counted);
-    const populationSize = Math.max(bearing.get(group[0]!.zone) ?? Infinity, perVine.length);
-    const mean = measuredMean(perVine, { populationSize, confidence: measure.confidence });
+    if (counted.length === 0) return [];
+    const bearingHere = bearing.get(group[0]!.zone) ?? Infinity;
+    const mean = meanOf(visitMean(counted, bearingHere), measure.confidence);
+    const populationSize = Math.max(bearingHere, mean.n);
     const margin = measure.marginKind === 'absolute' ? measure.margin : Math.abs(mean.mean) * measure.margin;
     const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: Math.max(mean.sd, 1e-9), margin, confidence: measure.confidence, populationSize });
-    return {
-      ...mean,
-      zone: group[0]!.zone,
-      measure: measure.code,
-      visit: group[0]!.visit,
-      margin,
-      enough: missing?.enough ?? false,
-      more: missing?.more ?? null,
-      provisional: counted.filter((reading) => reading.state === 'provisional').length,
-      leftOut: group.length - counted.length,
-    };
+    return [
+      {
+        ...mean,
+        zone: group[0]!.zone,
+        measure: measure.code,
+        visit: group[0]!.visit,
+        margin,
+        enough: missing?.enough ?? false,
+        more: missing?.more ?? null,
+        provisional: counted.filter((reading) => reading.state === 'provisional').length,
+        leftOut: group.length - counted.length,
+      },
+    ];
   });
 }
 
-/** One value a vine: two readings of a vine on one visit are repeats, not two vines. A reading of several samples weighs as one vine. */
-function vineMeans(readings: ZonedReading[]): number[] {
-  return [...groupBy(readings, (reading) => reading.vineKey).values()].map((same) => same.reduce((sum, reading) => sum + reading.value, 0) / same.length);
-}
-
-function measuredMean(values: number[], { populationSize, confidence }: { populationSize: number; confidence: number }): MeasuredMean {
-  const { n, mean, sd } = summarise(values);
-  const estimate = meanEstimate({ n, mean, sd, populationSize });
+function meanOf({ n, mean, sd, estimate }: VisitMean, confidence: number): MeasuredMean {
   return { n, mean, sd: n < 2 ? null : sd, confidence, ...rangeOf(estimate, confidence) };
 }
 

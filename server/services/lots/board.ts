@@ -1,0 +1,123 @@
+import type { LotView, LotZone, LotsBoard, TankView } from '../../../shared/contracts/lots.ts';
+import type { Access } from '../../access/access.ts';
+import { Missing } from '../../errors.ts';
+import { isBearing } from '../../ground/blockVines.ts';
+import { Scenario } from '../../models/Scenario.ts';
+import { Tank } from '../../models/Tank.ts';
+import { loadBoardGround, type BoardBlock, type BoardGround } from './boardGround.ts';
+import { summariseLot, type LotShare } from './summariseLot.ts';
+import { boardConfidence, figureOf } from './zoneOutlook.ts';
+
+/** The lots of a scenario, every zone with what is free of it, and the tanks. Without a scenario: the live one of the season. */
+export async function lotsBoard(access: Access, options: { scenarioId: string | null; today: string }): Promise<LotsBoard> {
+  const scenario = await findScenario(access, options);
+  const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
+  const tanks = await listTanks(access);
+  const ground = await loadBoardGround(access.estateId, scenario);
+  return {
+    scenarioId: scenario.id,
+    scenarios: scenarios.map(({ id, name, isLive }) => ({ id, name, isLive })),
+    seasonId: scenario.seasonId,
+    confidence: boardConfidence,
+    zones: ground.blocks.flatMap((block) => block.zones.map((_, index) => zoneLine(ground, block, index))),
+    lots: ground.lots.map((_, index) => lotView(ground, index, tanks)),
+    tanks,
+  };
+}
+
+export async function findScenario(access: Access, options: { scenarioId: string | null; today: string }): Promise<Scenario> {
+  const query = Scenario.query().where('scenarios.estateId', access.estateId);
+  const found = options.scenarioId
+    ? await query.findOne({ 'scenarios.id': options.scenarioId })
+    : await query.where({ isLive: true }).join('seasons', 'seasons.id', 'scenarios.seasonId').orderByRaw('(seasons.starts_on <= ?::date and seasons.ends_on >= ?::date) desc, seasons.starts_on desc', [options.today, options.today]).select('scenarios.*').first();
+  if (!found) throw new Missing('No lots are kept for this season yet. Make the season first.');
+  return found;
+}
+
+export async function listTanks(access: Access): Promise<TankView[]> {
+  const rows = await Tank.query().where({ estateId: access.estateId }).whereNull('retiredAt').orderBy('name');
+  return rows.map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill }));
+}
+
+function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZone {
+  const zone = block.zones[index]!;
+  const outlook = block.outlooks[index]!;
+  const shares = sharesOf(block, zone.number);
+  const inLots = ground.lots.map((lot, at) => ({ lotId: lot.id, lotName: lot.name, share: shares.byLot.get(at) ?? 0 })).filter((entry) => entry.share > 0);
+  const freeShare = Math.max(0, 1 - inLots.reduce((sum, entry) => sum + entry.share, 0));
+  const latest = (code: 'brix' | 'ph' | 'ta') => {
+    const mean = outlook.latest[code];
+    return mean === null ? null : figureOf(mean.estimate, { n: mean.n, kind: 'measured' });
+  };
+  return {
+    zoneId: zone.id,
+    blockId: block.ground.block.id,
+    blockName: block.ground.block.name,
+    variety: block.ground.block.variety,
+    number: zone.number,
+    zoneCount: block.zones.length,
+    name: zone.name,
+    areaHa: zone.areaM2 / 10_000,
+    vines: outlook.vines,
+    bearing: outlook.bearing,
+    tonnes: figureOf(outlook.tonnes, { n: null, kind: outlook.parts.some((part) => part.kind === 'measured' && part.n !== null) ? 'estimated' : 'assumed' }),
+    yieldParts: outlook.parts,
+    dominating: outlook.yield.dominating,
+    latest: { brix: latest('brix'), ph: latest('ph'), ta: latest('ta'), on: outlook.latestOn },
+    freeShare,
+    freeTonnes: freeShare * outlook.tonnes.value,
+    inLots,
+  };
+}
+
+/** Share of a zone's bearing vines in each lot. */
+function sharesOf(block: BoardBlock, zone: number): { byLot: Map<number, number>; bearing: number } {
+  const counts = new Map<number, number>();
+  let bearing = 0;
+  block.zoneOf.forEach((of, vine) => {
+    if (of !== zone || !isBearing(block.ground.states[vine]!)) return;
+    bearing += 1;
+    const lot = block.lotOf[vine]!;
+    if (lot >= 0) counts.set(lot, (counts.get(lot) ?? 0) + 1);
+  });
+  return { byLot: new Map([...counts].map(([lot, count]) => [lot, count / bearing])), bearing };
+}
+
+function lotView(ground: BoardGround, index: number, tanks: TankView[]): LotView {
+  const lot = ground.lots[index]!;
+  const shares = ground.blocks.flatMap((block) => lotShares(block, index));
+  return {
+    id: lot.id,
+    name: lot.name,
+    wineType: lot.wineType,
+    state: lot.state,
+    pickOn: lot.pickOn,
+    tankId: lot.tankId,
+    version: lot.version,
+    lines: shares.map(({ block, zone, outlook, vines, bearing, share }) => ({
+      zoneId: zone.id,
+      blockId: block.ground.block.id,
+      blockName: block.ground.block.name,
+      number: zone.number,
+      zoneCount: block.zones.length,
+      name: zone.name,
+      vines,
+      bearing,
+      share,
+      areaHa: (share * zone.areaM2) / 10_000,
+      tonnes: figureOf({ ...outlook.tonnes, value: outlook.tonnes.value * share, standardError: outlook.tonnes.standardError * share }, { n: null, kind: 'estimated' }),
+    })),
+    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null }),
+  };
+}
+
+/** The zones, or parts of zones, of one block in a lot: by today's zones, whatever they were when the lot was made. */
+function lotShares(block: BoardBlock, lot: number): LotShare[] {
+  return block.zones.flatMap((zone, index) => {
+    const mine = [...block.zoneOf.keys()].filter((vine) => block.zoneOf[vine] === zone.number && block.lotOf[vine] === lot);
+    if (mine.length === 0) return [];
+    const outlook = block.outlooks[index]!;
+    const bearing = mine.filter((vine) => isBearing(block.ground.states[vine]!)).length;
+    return [{ block, zone, outlook, vines: mine.length, bearing, share: outlook.bearing > 0 ? bearing / outlook.bearing : 0 }];
+  });
+}

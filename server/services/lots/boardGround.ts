@@ -1,0 +1,80 @@
+import type { TransactionOrKnex } from 'objection';
+import { vineIndex } from '../../../shared/geo/vines.ts';
+import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { Lot } from '../../models/Lot.ts';
+import { LotPart } from '../../models/LotPart.ts';
+import { LotRowRun } from '../../models/LotRowRun.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Season } from '../../models/Season.ts';
+import { Zone } from '../../models/Zone.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { zoneOutlooks, type ZoneOutlook } from './zoneOutlook.ts';
+
+/** A block with its live zones, what to expect of them, and which lot each vine is in. */
+export interface BoardBlock {
+  ground: BlockVines;
+  zoneOf: Uint8Array;
+  zones: Zone[];
+  outlooks: ZoneOutlook[];
+  /** Per vine: index into `lots`, or -1 while free. */
+  lotOf: Int16Array;
+}
+
+export interface BoardGround {
+  season: Season;
+  lots: Lot[];
+  blocks: BoardBlock[];
+}
+
+/** Loads everything that the lots of a scenario are made of: each live zoning of the season, its fruit, and the lots' vines. */
+export async function loadBoardGround(estateId: string, scenario: { id: string; seasonId: string }): Promise<BoardGround> {
+  const season = await Season.query().findOne({ estateId, id: scenario.seasonId }).throwIfNotFound();
+  const zonings = await Zoning.query().where({ estateId, seasonId: season.id, state: 'live' });
+  const zones = await Zone.query().where({ estateId }).whereIn('zoningId', zonings.map((zoning) => zoning.id)).orderBy('number').select('id', 'zoningId', 'number', 'name', 'areaM2');
+  const measures = await MeasureRecord.query().where({ estateId });
+  const lots = await Lot.query().where({ estateId, scenarioId: scenario.id }).orderBy('createdAt');
+  const runs = await runsOf(estateId, scenario.id);
+  const blocks = await Promise.all(
+    zonings.map(async (zoning): Promise<BoardBlock> => {
+      const ground = await loadBlockVines(estateId, zoning.blockId);
+      const zoneOf = zonesOfVines(ground, zoning);
+      const own = zones.filter((zone) => zone.zoningId === zoning.id);
+      const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id });
+      const outlooks = zoneOutlooks({ ground, zoneOf, zoneNumbers: own.map((zone) => zone.number), readings, measures, season });
+      return { ground, zoneOf, zones: own, outlooks, lotOf: lotsOfVines(ground, lots, runs) };
+    }),
+  );
+  blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name));
+  return { season, lots, blocks };
+}
+
+interface Run {
+  lotId: string;
+  rowId: string;
+  from: number;
+  to: number;
+}
+
+/** Runs of vines of all lots of a scenario, both ends included. */
+export async function runsOf(estateId: string, scenarioId: string, trx?: TransactionOrKnex): Promise<Run[]> {
+  return (await LotRowRun.query(trx)
+    .where('lot_row_runs.estateId', estateId)
+    .where('lot_row_runs.scenarioId', scenarioId)
+    .join(`${LotPart.tableName} as part`, 'part.id', 'lot_row_runs.lotPartId')
+    .select('part.lotId', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as Run[];
+}
+
+function lotsOfVines(ground: BlockVines, lots: Lot[], runs: Run[]): Int16Array {
+  const lotOf = new Int16Array(ground.vines.count).fill(-1);
+  const indexOf = new Map(lots.map((lot, index) => [lot.id, index]));
+  for (const run of runs) {
+    const row = ground.rowIndexOf.get(run.rowId);
+    if (row === undefined) continue;
+    for (let ordinal = run.from; ordinal <= run.to; ordinal++) {
+      const vine = vineIndex(ground.vines, row, ordinal);
+      if (vine >= 0) lotOf[vine] = indexOf.get(run.lotId) ?? -1;
+    }
+  }
+  return lotOf;
+}

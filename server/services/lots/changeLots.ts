@@ -1,0 +1,150 @@
+import type { z } from 'zod';
+import { reachOf } from '../../../shared/catalog/permissions.ts';
+import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
+import type { lotChange, lotParts, newLot, newScenario, newTank, tankChange } from '../../../shared/contracts/lots.ts';
+import type { Transaction } from 'objection';
+import type { Access } from '../../access/access.ts';
+import { Clash, NotAllowed, Stale, Unusable } from '../../errors.ts';
+import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { EntryRestriction } from '../../models/EntryRestriction.ts';
+import { Lot } from '../../models/Lot.ts';
+import { LotPart } from '../../models/LotPart.ts';
+import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
+import { Scenario } from '../../models/Scenario.ts';
+import { Tank } from '../../models/Tank.ts';
+import { Zone } from '../../models/Zone.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { findScenario } from './board.ts';
+import { runsOf } from './boardGround.ts';
+
+export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
+  const scenario = await findScenario(access, { scenarioId: input.scenarioId, today });
+  return Lot.transaction(async (trx) => {
+    const lot = await Lot.query(trx).insert({ ...input, scenarioId: scenario.id, seasonId: scenario.seasonId, estateId: access.estateId, createdBy: access.personId });
+    await writeAudit(trx, access, { action: 'lots.create', subjectType: 'lot', subjectId: lot.id, subjectName: input.name, after: input });
+    return { id: lot.id };
+  });
+}
+
+/** Changes name, wine, date or tank of a lot that is still at the version the change was made on. */
+export async function changeLot(access: Access, lotId: string, change: z.infer<typeof lotChange>, version: number): Promise<void> {
+  await Lot.transaction(async (trx) => {
+    const lot = await lockLot(trx, access, lotId, version);
+    if (change.pickOn) await requireNoPickRestriction(trx, access, lotId, change.pickOn);
+    await lot.$query(trx).patch({ ...change, version: lot.version + 1 });
+    await writeAudit(trx, access, { action: 'lots.change', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { name: lot.name, pickOn: lot.pickOn, tankId: lot.tankId }, after: change });
+  });
+}
+
+/**
+ * Sets the whole content of a lot: zones of any block, whole or by rows, stored as runs of vines along rows.
+ * A vine that is in another lot of the scenario is refused with that lot's name; the database refuses it too.
+ */
+export async function setLotParts(access: Access, lotId: string, input: z.infer<typeof lotParts>, version: number): Promise<void> {
+  await Lot.transaction(async (trx) => {
+    const lot = await lockLot(trx, access, lotId, version);
+    await LotPart.query(trx).where({ estateId: access.estateId, lotId }).delete();
+    for (const part of input.parts) await addPart(trx, access, lot, part);
+    await lot.$query(trx).patch({ version: lot.version + 1 });
+    await writeAudit(trx, access, { action: 'lots.parts', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, after: input.parts });
+  });
+}
+
+async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }): Promise<void> {
+  const zone = await Zone.query(trx).findOne({ estateId: access.estateId, id: part.zoneId }).select('id', 'zoningId', 'number', 'name').throwIfNotFound();
+  const zoning = await Zoning.query(trx).findOne({ estateId: access.estateId, id: zone.zoningId }).throwIfNotFound();
+  if (zoning.state !== 'live') throw new Unusable('zoneNotLive', `Zone ${zone.number} belongs to zones that are not in force. Choose it from the zones in force.`);
+  const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
+  const wanted = part.rowIds === null ? null : new Set(part.rowIds);
+  const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning))
+    .filter((run) => run.label === zone.number)
+    .map((run) => ({ rowId: ground.stored[run.rowIndex]!.id, from: run.fromOrdinal, to: run.toOrdinal }))
+    .filter((run) => wanted === null || wanted.has(run.rowId));
+  if (runs.length === 0) throw new Unusable('emptyPart', `Zone ${zone.number} of ${ground.block.name} has no vines in these rows. Choose rows that cross the zone.`);
+  await requireFree(trx, access, lot, { runs, what: `${ground.block.name} zone ${zone.number}` });
+  const row = await LotPart.query(trx).insert({ estateId: access.estateId, lotId: lot.id, blockId: zoning.blockId, zoneId: zone.id, zoneNumber: zone.number, zoneName: zone.name });
+  await LotRowRun.query(trx).insert(runs.map((run) => ({ estateId: access.estateId, scenarioId: lot.scenarioId, lotPartId: row.id, rowId: run.rowId, vines: vineRange(run.from, run.to) as unknown as string })));
+}
+
+async function requireFree(trx: Transaction, access: Access, lot: Lot, part: { runs: { rowId: string; from: number; to: number }[]; what: string }): Promise<void> {
+  const taken = await runsOf(access.estateId, lot.scenarioId, trx);
+  const clash = taken.find((other) => other.lotId !== lot.id && part.runs.some((run) => run.rowId === other.rowId && run.from <= other.to && other.from <= run.to));
+  if (!clash) return;
+  const other = await Lot.query(trx).findById(clash.lotId).throwIfNotFound();
+  throw new Clash('vineTwice', `Vines of ${part.what} are in the lot "${other.name}" already. Take them out there first.`);
+}
+
+/** Confirms a lot and its date. Whoever may only propose leaves it to another, unless nobody else can. */
+export async function confirmLot(access: Access, lotId: string, version: number, now: Date): Promise<void> {
+  if (reachOf(access.roles, 'lots.confirm') !== 'do') throw new NotAllowed('You may propose this lot; the winemaker or the owner confirms it.');
+  await Lot.transaction(async (trx) => {
+    const lot = await lockLot(trx, access, lotId, version);
+    if (lot.pickOn === null) throw new Unusable('noPickDate', 'Set a pick date before you confirm the lot.');
+    if ((await LotPart.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) === 0) throw new Unusable('emptyLot', 'Put at least one zone in the lot before you confirm it.');
+    await requireNoPickRestriction(trx, access, lotId, lot.pickOn);
+    await lot.$query(trx).patch({ state: 'confirmed', confirmedBy: access.personId, confirmedAt: now, version: lot.version + 1 });
+    await writeAudit(trx, access, { action: 'lots.confirm', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, after: { pickOn: lot.pickOn } });
+  });
+}
+
+export async function deleteLot(access: Access, lotId: string, version: number): Promise<void> {
+  await Lot.transaction(async (trx) => {
+    const lot = await lockLot(trx, access, lotId, version);
+    await lot.$query(trx).delete();
+    await writeAudit(trx, access, { action: 'lots.delete', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { wineType: lot.wineType, pickOn: lot.pickOn } });
+  });
+}
+
+/** Copies a scenario with its lots: a what-if that changes nothing live. */
+export async function copyScenario(access: Access, input: z.infer<typeof newScenario>): Promise<{ id: string }> {
+  return Scenario.transaction(async (trx) => {
+    const from = await Scenario.query(trx).findOne({ estateId: access.estateId, id: input.copyOf }).throwIfNotFound();
+    const copy = await Scenario.query(trx).insert({ estateId: access.estateId, seasonId: from.seasonId, name: input.name, isLive: false, createdBy: access.personId });
+    for (const lot of await Lot.query(trx).where({ estateId: access.estateId, scenarioId: from.id })) {
+      const made = await Lot.query(trx).insert({ estateId: access.estateId, scenarioId: copy.id, seasonId: lot.seasonId, name: lot.name, wineType: lot.wineType, pickOn: lot.pickOn, tankId: lot.tankId, createdBy: access.personId, createdAt: lot.createdAt });
+      for (const part of await LotPart.query(trx).where({ estateId: access.estateId, lotId: lot.id })) {
+        const { id: partId, ...facts } = part.toJSON() as LotPart;
+        const copied = await LotPart.query(trx).insert({ ...facts, lotId: made.id });
+        await trx.raw('insert into lot_row_runs (estate_id, scenario_id, lot_part_id, row_id, vines) select estate_id, ?, ?, row_id, vines from lot_row_runs where estate_id = ? and lot_part_id = ?', [copy.id, copied.id, access.estateId, partId]);
+      }
+    }
+    await writeAudit(trx, access, { action: 'lots.copyScenario', subjectType: 'scenario', subjectId: copy.id, subjectName: input.name, after: { copyOf: from.id } });
+    return { id: copy.id };
+  });
+}
+
+export async function createTank(access: Access, input: z.infer<typeof newTank>): Promise<{ id: string }> {
+  return Tank.transaction(async (trx) => {
+    const tank = await Tank.query(trx).insert({ ...input, estateId: access.estateId });
+    await writeAudit(trx, access, { action: 'tanks.create', subjectType: 'tank', subjectId: tank.id, subjectName: input.name, after: input });
+    return { id: tank.id };
+  });
+}
+
+export async function changeTank(access: Access, tankId: string, change: z.infer<typeof tankChange> & { retiredAt?: Date }): Promise<void> {
+  await Tank.transaction(async (trx) => {
+    const tank = await Tank.query(trx).findOne({ estateId: access.estateId, id: tankId }).throwIfNotFound();
+    await tank.$query(trx).patch(change);
+    await writeAudit(trx, access, { action: change.retiredAt ? 'tanks.retire' : 'tanks.change', subjectType: 'tank', subjectId: tankId, subjectName: tank.name, after: change });
+  });
+}
+
+async function lockLot(trx: Transaction, access: Access, lotId: string, version: number): Promise<Lot> {
+  const lot = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).forUpdate().throwIfNotFound();
+  if (lot.version !== version) throw new Stale('lotChanged', `Somebody changed the lot "${lot.name}" since you read it. Load it again and repeat the step.`, { current: lot.version });
+  return lot;
+}
+
+/** A pick date inside an entry restriction or a pre-harvest interval is stopped, with the entry named. */
+async function requireNoPickRestriction(trx: Transaction, access: Access, lotId: string, pickOn: string): Promise<void> {
+  const clash = await EntryRestriction.query(trx)
+    .where('entry_restrictions.estateId', access.estateId)
+    .whereNull('liftedAt')
+    .whereIn('blockId', LotPart.query(trx).where({ estateId: access.estateId, lotId }).select('blockId'))
+    .whereRaw('(no_pick_before > ?::date or (starts_at::date <= ?::date and ends_at > ?::date))', [pickOn, pickOn, pickOn])
+    .first();
+  if (!clash) return;
+  const until = clash.noPickBefore && clash.noPickBefore > pickOn ? clash.noPickBefore : clash.endsAt.toISOString().slice(0, 10);
+  throw new Clash('restricted', `${clash.product} (interval as typed: ${clash.labelInterval}) rules out picking before ${until} in a block of this lot. Choose a later day; label and local law come first.`, { restrictionId: clash.id });
+}

@@ -1,0 +1,102 @@
+import { z } from 'zod';
+import { id, isoDate, shortName } from './common.ts';
+
+export const wineTypes = ['red', 'white', 'rose'] as const;
+export const wineType = z.enum(wineTypes);
+export type WineType = z.infer<typeof wineType>;
+
+/** A figure with its range; `kind` says whether it was measured, estimated or assumed. */
+export const figure = z.object({
+  value: z.number(),
+  standardError: z.number().nullable(),
+  halfWidth: z.number().nullable(),
+  n: z.number().int().nullable(),
+  confidence: z.number(),
+  kind: z.enum(['measured', 'estimated', 'assumed']),
+});
+export type Figure = z.infer<typeof figure>;
+
+export const yieldPart = z.object({ part: z.enum(['vines', 'clusters', 'clusterWeight', 'growth', 'losses']), share: z.number(), kind: z.enum(['measured', 'assumed']), value: z.number(), n: z.number().int().nullable() });
+
+/** A live zone as the lots see it: what to expect of it, and how much of it is still free. */
+export const lotZone = z.object({
+  zoneId: id,
+  blockId: id,
+  blockName: z.string(),
+  variety: z.string(),
+  number: z.number().int(),
+  zoneCount: z.number().int(),
+  name: z.string(),
+  areaHa: z.number(),
+  vines: z.number().int(),
+  bearing: z.number().int(),
+  tonnes: figure,
+  yieldParts: z.array(yieldPart),
+  dominating: z.string().nullable(),
+  latest: z.object({ brix: figure.nullable(), ph: figure.nullable(), ta: figure.nullable(), on: z.string().nullable() }),
+  freeShare: z.number(),
+  freeTonnes: z.number(),
+  inLots: z.array(z.object({ lotId: id, lotName: z.string(), share: z.number() })),
+});
+export type LotZone = z.infer<typeof lotZone>;
+
+export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure });
+
+export const lotSummary = z.object({
+  areaHa: z.number(),
+  vines: z.number().int(),
+  bearing: z.number().int(),
+  tonnes: figure.nullable(),
+  dominating: z.string().nullable(),
+  brix: figure.nullable(),
+  ph: figure.nullable(),
+  phViaHydrogen: z.number().nullable(),
+  ta: figure.nullable(),
+  weighting: z.enum(['tonnes', 'area']).nullable(),
+  alcohol: z.object({ method: z.string(), low: z.number(), middle: z.number(), high: z.number() }).nullable(),
+  mustL: figure.nullable(),
+  wineL: figure.nullable(),
+  betweenShare: z.number().nullable(),
+  tank: z.object({ tankId: id, name: z.string(), workingL: z.number(), chanceOfFit: z.number(), chanceBelowMinimum: z.number() }).nullable(),
+  /** Zones without a reading of the measure; their part is left out of its mean. */
+  unknown: z.array(z.object({ measure: z.string(), zones: z.array(z.string()) })),
+});
+export type LotSummary = z.infer<typeof lotSummary>;
+
+export const lotView = z.object({
+  id,
+  name: z.string(),
+  wineType,
+  state: z.enum(['draft', 'confirmed', 'picked']),
+  pickOn: isoDate.nullable(),
+  tankId: id.nullable(),
+  version: z.number().int(),
+  lines: z.array(lotLine),
+  summary: lotSummary,
+});
+export type LotView = z.infer<typeof lotView>;
+
+export const tankView = z.object({ id, name: z.string(), litres: z.number(), workingFill: z.number(), minimumFill: z.number() });
+export type TankView = z.infer<typeof tankView>;
+
+export const lotsBoard = z.object({
+  scenarioId: id,
+  scenarios: z.array(z.object({ id, name: z.string(), isLive: z.boolean() })),
+  seasonId: id,
+  confidence: z.number(),
+  zones: z.array(lotZone),
+  lots: z.array(lotView),
+  tanks: z.array(tankView),
+});
+export type LotsBoard = z.infer<typeof lotsBoard>;
+
+export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null) });
+export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable() }).partial();
+
+/** The whole new content of a lot: zones of any block, each whole or by rows. */
+export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200) });
+
+const litres = z.number().positive('Litres must be above 0.').max(2_000_000);
+export const newTank = z.object({ name: shortName, litres, workingFill: z.number().gt(0).max(1).default(0.8), minimumFill: z.number().min(0).lt(1).default(0.5) });
+export const tankChange = newTank.partial();
+export const newScenario = z.object({ name: shortName, copyOf: id });

@@ -49,17 +49,32 @@ function satterthwaite(zones: readonly AllocationZone[], counts: readonly number
   return (variance * variance) / sum;
 }
 
-/** The smallest total whose sharing keeps the margin. No sharing can do with fewer than the Neyman total, where the search starts. */
+/**
+ * The smallest total whose sharing keeps the margin: one fewer would miss it. No sharing can do with fewer than the
+ * Neyman total, where the search starts; it doubles its step until the margin is kept, then halves the gap.
+ */
 export function blockSampleSize({ zones, margin, confidence, method, factor = 't' }: BlockQuestion): BlockAnswer {
   checkMargin(margin);
   checkConfidence(confidence);
   const least = zones.reduce((sum, zone) => sum + minimumOf(zone), 0);
   const most = zones.reduce((sum, zone) => sum + maximumOf(zone), 0);
   const share = allocationMethod(method).counts;
-  const bound = neymanTotal(zones, targetVariance(margin, criticalZ(confidence)));
-  for (let total = Math.max(least, Math.floor(bound)); ; total++) {
-    const answer = blockPrecision(zones, share(zones, Math.min(total, most)), { confidence, factor });
-    const reached = answer.halfWidth <= margin * (1 + 1e-12);
-    if (reached || total >= most) return { ...answer, reached, atMinimum: answer.total <= least };
+  const answerAt = (total: number): BlockAnswer => {
+    const answer = blockPrecision(zones, share(zones, total), { confidence, factor });
+    return { ...answer, reached: answer.halfWidth <= margin * (1 + 1e-12), atMinimum: answer.total <= least };
+  };
+  const bound = Math.min(most, Math.max(least, Math.floor(neymanTotal(zones, targetVariance(margin, criticalZ(confidence))))));
+  let best = answerAt(bound);
+  let missed = bound;
+  for (let step = 1; !best.reached && missed < most; step *= 2) {
+    const next = Math.min(most, bound + step);
+    best = answerAt(next);
+    if (!best.reached) missed = next;
   }
+  while (best.reached && best.total - missed > 1) {
+    const middle = answerAt(Math.floor((missed + best.total) / 2));
+    if (middle.reached) best = middle;
+    else missed = middle.total;
+  }
+  return best;
 }

@@ -31,13 +31,14 @@ export function planForBudget(question: PlanQuestion, budget: Budget): BudgetAns
   if (!(budget.value > 0)) throw new AnalysisError('bad_budget', `The budget must be above 0; got ${budget.value}.`);
   const found = smallestScale(question, (plan) => spent(plan, budget.kind) <= budget.value * (1 + 1e-12));
   if (found === null) return { kind: 'tooSmall', least: spent(planCounts(scaleMargins(question, LARGEST)), budget.kind) };
-  return { kind: 'plan', ...found, everyVine: found.scale === SMALLEST };
+  return { kind: 'plan', ...found, everyVine: found.scale <= SMALLEST };
 }
 
-const SMALLEST = 1e-6;
+/** Margins tighter than this ask for every vine. */
+const SMALLEST = 4 ** -10;
 const LARGEST = 1e6;
 
-/** Smallest factor on all margins whose plan fits, to 1e-7; null when even the minimum does not. Counts only fall as margins widen. */
+/** Smallest factor on all margins whose plan fits, to 1e-5; null when even the minimum does not. Counts only fall as margins widen. */
 export function smallestScale(question: PlanQuestion, fits: (plan: PlanCounts) => boolean): { readonly scale: number; readonly plan: PlanCounts } | null {
   const planAt = (scale: number) => planCounts(scaleMargins(question, scale));
   let high = 1;
@@ -45,9 +46,13 @@ export function smallestScale(question: PlanQuestion, fits: (plan: PlanCounts) =
     high *= 4;
     if (high > LARGEST) return null;
   }
-  let low = high === 1 ? SMALLEST : high / 4;
-  if (low === SMALLEST && fits(planAt(SMALLEST))) return { scale: SMALLEST, plan: planAt(SMALLEST) };
-  while (high / low > 1 + 1e-7) {
+  let low = high / 4;
+  while (low < 1 && fits(planAt(low))) {
+    high = low;
+    if (high <= SMALLEST) return { scale: high, plan: planAt(high) };
+    low = high / 4;
+  }
+  while (high / low > 1 + 1e-5) {
     const middle = Math.sqrt(high * low);
     if (fits(planAt(middle))) high = middle;
     else low = middle;

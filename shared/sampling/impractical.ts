@@ -101,11 +101,18 @@ export function mergeZones(question: PlanQuestion, i: number, j: number): PlanQu
   const [first, second] = [question.zones[i]!, question.zones[j]!];
   const others = <T>(items: readonly T[]) => items.filter((_, at) => at !== i && at !== j);
   const merged = { zone: `${first.zone} + ${second.zone}`, vines: first.vines + second.vines, eligibleVines: (first.eligibleVines ?? first.vines) + (second.eligibleVines ?? second.vines) };
-  const measures = question.measures.map((measure) => mergeMeasure(measure, [i, j], [first.vines, second.vines], others));
+  const measures = question.measures.map((measure) => mergeMeasure(measure, { pair: [i, j], vines: [first.vines, second.vines], others }));
   return { ...question, zones: [...others(question.zones), merged], measures };
 }
 
-function mergeMeasure(measure: PlanMeasure, pair: readonly [number, number], vines: readonly [number, number], others: <T>(items: readonly T[]) => T[]): PlanMeasure {
+interface ZonePair {
+  readonly pair: readonly [number, number];
+  readonly vines: readonly [number, number];
+  /** Items of the zones outside the pair. */
+  readonly others: <T>(items: readonly T[]) => T[];
+}
+
+function mergeMeasure(measure: PlanMeasure, { pair, vines, others }: ZonePair): PlanMeasure {
   const means = pair.map((at) => measure.expectedMeans[at]!);
   const [meanA, meanB] = means as [number | null, number | null];
   const mean = meanA === null || meanB === null ? null : (meanA * vines[0] + meanB * vines[1]) / (vines[0] + vines[1]);

@@ -4,7 +4,7 @@
  * The relaxed problem is convex (Kokan & Khan 1967, J. R. Statist. Soc. B 29:115); its multipliers come from the
  * iteration of Chromy 1987. They give a lower bound and a price for every count of every zone; a search over the
  * counts whose prices fit between bound and best answer is then exhaustive, so the answer is exact.
- * Cost: a few thousand nodes for five zones and six measures.
+ * Cost: some thousand nodes for five zones and six measures; cut off at 40 000, a few hundredths of a second.
  */
 export interface LeastCostProblem {
   readonly costs: readonly number[];
@@ -27,12 +27,17 @@ export interface LeastCostAnswer {
   readonly weights: readonly number[];
   /** False when the maximum counts miss a limit (counts are then the maximum). */
   readonly reached: boolean;
-  /** False when the search was cut off: the counts keep all limits but a cheaper set may exist. */
+  /** False when the search was cut off: the counts keep all limits, but a set cheaper by a sample or so may exist. */
   readonly proved: boolean;
 }
 
 const ROUNDS = 400;
-const NODE_LIMIT = 400_000;
+/** A multiplier has settled when its limit is met this closely; one with less than this share of the price is idle. */
+const SETTLED = 1e-7;
+const NEGLIGIBLE = 1e-8;
+/** Where counts run into the hundreds the optimum is so flat that thousands of sets tie; looking at all would be idle. */
+const NODE_LIMIT = 40_000;
+const TIE_LIMIT = 4000;
 
 export function leastCostCounts(problem: LeastCostProblem): LeastCostAnswer {
   const { costs, maximum, limits } = problem;
@@ -84,19 +89,18 @@ function relaxedCounts(problem: LeastCostProblem, multipliers: readonly number[]
   return priced(problem, multipliers).map((price, i) => Math.min(maximum[i]!, Math.max(minimum[i]!, Math.sqrt(price / costs[i]!))));
 }
 
-/** Each multiplier is raised or lowered by the square of how far its limit is missed, until none moves. */
+/** Each multiplier is raised or lowered by the square of how far its limit is missed, until none that counts moves. */
 function solveMultipliers(problem: LeastCostProblem): number[] {
   const { costs, terms, limits } = problem;
   let multipliers = terms.map((row, j) => (row.reduce((sum, term, i) => sum + Math.sqrt(term * costs[i]!), 0) / limits[j]!) ** 2);
   for (let round = 0; round < ROUNDS; round++) {
     const counts = relaxedCounts(problem, multipliers);
-    let moved = 0;
-    multipliers = multipliers.map((multiplier, j) => {
-      const factor = (used(terms[j]!, counts) / limits[j]!) ** 2;
-      if (multiplier > 1e-12) moved = Math.max(moved, Math.abs(factor - 1));
-      return multiplier * factor;
-    });
-    if (moved < 1e-10) break;
+    const factors = terms.map((row, j) => (used(row, counts) / limits[j]!) ** 2);
+    const prices = multipliers.map((multiplier, j) => multiplier * limits[j]!);
+    const negligible = NEGLIGIBLE * prices.reduce((sum, price) => sum + price, 0);
+    const settled = factors.every((factor, j) => Math.abs(factor - 1) < SETTLED || prices[j]! * Math.max(1, factor) <= negligible);
+    multipliers = multipliers.map((multiplier, j) => multiplier * factors[j]!);
+    if (settled) break;
   }
   return multipliers;
 }
@@ -171,10 +175,14 @@ function searchAround(problem: LeastCostProblem, multipliers: readonly number[],
     for (let i = row.length - 1; i >= 0; i--) rest[i] = rest[i + 1]! + row[i]! / Math.max(1, ...lists[i]!.map(({ n }) => n));
     return rest;
   });
+  // With one cost for all zones the total moves in whole steps, so a best within a step of the bound is the best there is.
+  const step = costs.every((cost) => cost === costs[0]) ? costs[0]! : 0;
+  const isCheapest = () => bestCost - step < floorValue - slack;
   const counts = costs.map(() => 0);
   let nodes = 0;
   const visit = (zone: number, state: { excess: number; used: readonly number[]; cost: number }): void => {
-    if (nodes++ > NODE_LIMIT) return;
+    if (nodes > (isCheapest() ? TIE_LIMIT : NODE_LIMIT)) return;
+    nodes += 1;
     if (zone === costs.length) {
       const share = Math.max(...state.used.map((value, j) => value / limits[j]!));
       if (state.cost > bestCost + slack || (state.cost > bestCost - slack && share >= bestShare)) return;
@@ -192,5 +200,5 @@ function searchAround(problem: LeastCostProblem, multipliers: readonly number[],
     }
   };
   visit(0, { excess: 0, used: terms.map(() => 0), cost: 0 });
-  return { counts: best, proved: nodes <= NODE_LIMIT, lowerBound: floorValue };
+  return { counts: best, proved: nodes <= NODE_LIMIT || isCheapest(), lowerBound: floorValue };
 }

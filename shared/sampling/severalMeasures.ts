@@ -1,4 +1,5 @@
 import { minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
+import { blockSampleSize } from './blockSampleSize.ts';
 import { leastCostCounts, type LeastCostAnswer, type LeastCostProblem } from './leastCost.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { criticalT, criticalZ } from './quantiles.ts';
@@ -126,8 +127,9 @@ function degreesOfFreedom(zones: readonly SharedZone[], spreads: readonly number
  * margin for the mean over zones, never more than the vines visited.
  */
 export function trimToVisited(zones: readonly SharedZone[], measures: readonly MeasureDemand[], visited: readonly number[]): number[][] {
-  return measures.map((measure) => {
-    const limited = zones.map((zone, i) => ({ ...zone, cost: 1, maximum: visited[i]! }));
-    return [...leastCostForAll(limited, [measure]).counts];
+  return measures.map(({ spreads, margin, confidence }) => {
+    // One measure, one cost: sharing by spread is the cheapest.
+    const limited = zones.map((zone, i) => ({ vines: zone.vines, minimum: zone.minimum, maximum: visited[i]!, sd: spreads[i]! }));
+    return [...blockSampleSize({ zones: limited, margin, confidence, method: 'spread' }).counts];
   });
 }

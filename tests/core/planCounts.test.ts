@@ -104,7 +104,7 @@ describe('a budget instead of margins', () => {
         const answer = planForBudget(question, budget);
         if (answer.kind !== 'plan') throw new Error('the budget pays for the minimum');
         expect(spent(answer.plan, budget.kind)).toBeLessThanOrEqual(budget.value);
-        const tighter = { ...question, measures: question.measures.map((measure) => ({ ...measure, margin: { ...measure.margin, value: measure.margin.value * answer.scale * (1 - 1e-5) } })) };
+        const tighter = { ...question, measures: question.measures.map((measure) => ({ ...measure, margin: { ...measure.margin, value: measure.margin.value * answer.scale * (1 - 1e-4) } })) };
         expect(spent(planCounts(tighter), budget.kind)).toBeGreaterThan(budget.value);
       }
   });

@@ -8,5 +8,9 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   signIn: () => import('../views/door/SignInView.vue'),
   join: () => import('../views/door/JoinView.vue'),
   home: () => import('../views/door/HomeView.vue'),
+  people: () => import('../views/people/PeopleView.vue'),
+  mail: () => import('../views/people/MailView.vue'),
+  settings: () => import('../views/people/SettingsView.vue'),
+  history: () => import('../views/people/HistoryView.vue'),
   notFound: () => import('../views/door/NotFoundView.vue'),
 };

@@ -1,0 +1,62 @@
+import { defineStore } from 'pinia';
+import { shallowRef } from 'vue';
+import type { z } from 'zod';
+import type { InvitationView, newInvitation, PersonView, rolesChange } from '../../shared/contracts/people.ts';
+import { http } from '../lib/http.ts';
+
+interface Listed<Item> {
+  items: Item[];
+}
+
+export interface AuditLine {
+  readonly id: number;
+  readonly who: string | null;
+  readonly action: string;
+  readonly subjectName: string;
+  readonly reason: string | null;
+  readonly at: string;
+}
+
+export interface MailLine {
+  readonly id: string;
+  readonly kind: string;
+  readonly to: string;
+  readonly name: string;
+  readonly subject: string;
+  readonly text: string;
+  readonly state: 'outbox' | 'sent' | 'failed';
+  readonly error: string | null;
+  readonly createdAt: string;
+}
+
+/** People of an estate, invitations, what was done and what was written. */
+export const usePeopleStore = defineStore('people', () => {
+  const people = shallowRef<readonly PersonView[]>([]);
+  const invitations = shallowRef<readonly InvitationView[]>([]);
+
+  async function load(estateId: string): Promise<void> {
+    const [found, invited] = await Promise.all([http.get<Listed<PersonView>>(`/api/estates/${estateId}/people`), http.get<Listed<InvitationView>>(`/api/estates/${estateId}/invitations`)]);
+    people.value = found.items;
+    invitations.value = invited.items;
+  }
+
+  async function invite(estateId: string, invitation: z.input<typeof newInvitation>): Promise<void> {
+    await http.post(`/api/estates/${estateId}/invitations`, invitation);
+    await load(estateId);
+  }
+
+  async function revoke(estateId: string, invitationId: string): Promise<void> {
+    await http.delete(`/api/estates/${estateId}/invitations/${invitationId}`);
+    await load(estateId);
+  }
+
+  async function setRoles(estateId: string, personId: string, change: z.input<typeof rolesChange>): Promise<void> {
+    await http.put(`/api/estates/${estateId}/people/${personId}/roles`, change);
+    await load(estateId);
+  }
+
+  const audit = (estateId: string, before: number | null) => http.get<{ items: AuditLine[]; next: number | null }>(`/api/estates/${estateId}/audit`, { query: { before } });
+  const mail = (estateId: string) => http.get<Listed<MailLine>>(`/api/estates/${estateId}/mail`);
+
+  return { people, invitations, load, invite, revoke, setRoles, audit, mail };
+});

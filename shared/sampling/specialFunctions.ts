@@ -8,7 +8,7 @@
 const TINY = 1e-300;
 const EPSILON = 1e-16;
 const MAX_STEPS = 20_000;
-const HALF_LN_TWO_PI = 0.91893853320467274178;
+const HALF_LN_TWO_PI = 0.9189385332046728;
 /** Below this the Stirling series is reached by the recurrence. */
 const STIRLING_FROM = 10;
 

@@ -16,23 +16,37 @@ export function collectColumns(table: ParsedTable, kept: readonly number[], { ma
   const out: CollectedColumns = { numbers: new Map(), texts: new Map(), warnings: [] };
   for (const [column, name] of table.names.entries()) {
     if (skip.includes(column)) continue;
-    const cells = kept.map((row) => table.rows[row]![column] ?? '');
-    const read = cells.map((cell) => cellNumber(cell, mark));
-    const filled = cells.filter((cell) => cell !== '').length;
-    const numeric = read.filter(({ value }) => !Number.isNaN(value)).length;
+    const values = new Float64Array(kept.length);
+    const units = new Set<string>();
+    let filled = 0;
+    let numeric = 0;
+    for (const [at, row] of kept.entries()) {
+      const cell = table.rows[row]![column] ?? '';
+      const { value, unit } = cellNumber(cell, mark);
+      values[at] = value;
+      if (cell !== '') filled++;
+      if (!Number.isNaN(value)) numeric++;
+      if (unit !== '' && units.size < 4) units.add(unit);
+    }
     if (filled === 0 || numeric < MOSTLY * filled) {
+      const cells = kept.map((row) => table.rows[row]![column] ?? '');
       out.texts.set(name, cells);
-      if (cells.some((cell) => /^[=@]/.test(cell))) out.warnings.push({ code: 'formula-cells', text: `Column "${name}" holds formulas; they are kept as text and not worked out.`, params: { column: name } });
-      const dates = ambiguousDates(cells);
-      if (dates !== null) out.warnings.push({ code: 'ambiguous-dates', text: `Column "${name}" has dates such as ${dates}, in which day and month cannot be told apart.`, params: { column: name, example: dates } });
+      out.warnings.push(...textWarnings(name, cells));
       continue;
     }
-    out.numbers.set(name, Float64Array.from(read, ({ value }) => value));
-    const units = new Set(read.filter(({ unit }) => unit !== '').map(({ unit }) => unit));
+    out.numbers.set(name, values);
     if (units.size > 0) out.warnings.push({ code: 'units-in-cells', text: `Column "${name}" has units in its cells (${[...units].slice(0, 3).join(', ')}); the numbers are used as they stand.`, params: { column: name, units: [...units].slice(0, 3).join(', ') } });
     if (numeric < filled) out.warnings.push({ code: 'not-numbers', text: `Column "${name}" has ${filled - numeric} cells that are not numbers; they count as missing.`, params: { column: name, count: filled - numeric } });
   }
   return out;
+}
+
+function textWarnings(name: string, cells: readonly string[]): ImportWarning[] {
+  const warnings: ImportWarning[] = [];
+  if (cells.some((cell) => /^[=@]/.test(cell))) warnings.push({ code: 'formula-cells', text: `Column "${name}" holds formulas; they are kept as text and not worked out.`, params: { column: name } });
+  const dates = ambiguousDates(cells);
+  if (dates !== null) warnings.push({ code: 'ambiguous-dates', text: `Column "${name}" has dates such as ${dates}, in which day and month cannot be told apart.`, params: { column: name, example: dates } });
+  return warnings;
 }
 
 /** An example when every date fits both orders of day and month and not all are the same day and month. */

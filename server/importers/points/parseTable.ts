@@ -17,14 +17,14 @@ export interface ParsedTable {
 /** Comma-, semicolon-, tab- or bar-separated text (RFC 4180 and its relatives). Throws ImportProblem. */
 export function parseTable(text: string): ParsedTable {
   const separator = findSeparator(text);
-  const parsed = Papa.parse<string[]>(text.replace(/^\uFEFF/, ''), { delimiter: separator, skipEmptyLines: false });
+  const parsed = Papa.parse<string[]>(text.replace(/^\uFEFF/, ''), { delimiter: separator, skipEmptyLines: false, transform: (cell) => cell.trim() });
   const quotes = parsed.errors.find(({ type }) => type === 'Quotes');
   if (quotes !== undefined) {
     const row = (quotes.row ?? 0) + 1;
     throw new ImportProblem({ code: 'damaged', fact: `A quotation mark that opens in row ${row} is never closed, or stands inside a cell.`, remedy: 'Correct that row, or export the table again.', params: { row } });
   }
   if (parsed.data.length > limits.rows) throw new ImportProblem({ code: 'too-large', fact: `It has more than ${limits.rows} rows.`, remedy: 'Split the table, or thin out its points.' });
-  const all = parsed.data.map((cells, i) => ({ cells: cells.map((cell) => cell.trim()), number: i + 1 })).filter(({ cells }) => cells.some((cell) => cell !== ''));
+  const all = parsed.data.map((cells, i) => ({ cells, number: i + 1 })).filter(({ cells }) => cells.some((cell) => cell !== ''));
   if (all.length === 0) throw new ImportProblem({ code: 'empty', fact: 'It has no rows.', remedy: 'Export the table again.' });
   const width = usualWidth(all.map(({ cells }) => cells.length));
   if (width < 2) throw new ImportProblem({ code: 'wrong-type', fact: 'It has a single column: no comma, semicolon or tab separates its cells.', remedy: 'Save the table as CSV.' });

@@ -55,7 +55,7 @@ function unpackBlock({ layout, unpack }: Reader, raw: Uint8Array<ArrayBuffer>, p
   } catch (error) {
     throw damagedBlock(place, error instanceof Error ? error.message : 'unknown', error);
   }
-  if (bytes.byteLength < rows * rowBytes) throw damagedBlock(place, `${bytes.byteLength} of ${rows * rowBytes} bytes`, undefined);
+  if (bytes.byteLength < rows * rowBytes) throw layout.compression === 1 ? tooShort(place, bytes.byteLength, rows * rowBytes) : damagedBlock(place, `${bytes.byteLength} of ${rows * rowBytes} bytes`, undefined);
   const shape = { samplesPerRow: layout.blockWidth * (layout.separate ? 1 : layout.samples), stride: layout.separate ? 1 : layout.samples, bytesPerSample: layout.bits / 8 };
   if (layout.predictor === 3) return undoFloatDifferences(bytes, shape);
   // Differences were taken of the numbers, not of the bytes: the byte order is put right first.
@@ -82,6 +82,15 @@ function cutOff(place: Place, needed: number, size: number): ImportProblem {
     fact: `The file ends inside its picture: ${where(place)} needs bytes up to ${needed} and the file has ${size}.`,
     remedy: 'Copy or export it again; the transfer was probably cut off.',
     params: { needed, size },
+  });
+}
+
+function tooShort(place: Place, held: number, needed: number): ImportProblem {
+  return new ImportProblem({
+    code: 'truncated',
+    fact: `Its picture is shorter than it claims: ${where(place)} has ${held} of ${needed} bytes.`,
+    remedy: 'Copy or export it again.',
+    params: { held, needed },
   });
 }
 

@@ -11,7 +11,7 @@ import { describeField } from '../describeFields.ts';
 import type { RawLayer } from './rawLayer.ts';
 import { eachPosition, mapPositions } from './positions.ts';
 import { checkPolygon } from './repairPolygon.ts';
-import { layerWarnings, noteWarnings } from './vectorWarnings.ts';
+import { layerWarnings, noteWarnings, repairWarning } from './vectorWarnings.ts';
 
 export interface AssembleInputs {
   layers: readonly RawLayer[];
@@ -46,6 +46,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const repairs: GeometryRepair[] = [];
   const out: VectorLayer[] = [];
   for (const layer of cleaned) out.push(await finishLayer(layer, { reference: usable, options, warnings, repairs }));
+  warnings.push(...repairs.map(repairWarning));
   return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions, warnings };
 }
 
@@ -96,7 +97,7 @@ async function finishLayer(layer: CleanLayer, { reference, options, warnings, re
     features.push({ type: 'Feature', id: index, geometry: placed, properties: { ...properties } });
   }
   const used = convert === null ? layer.features.filter(({ geometry }) => geometry !== null) : features;
-  warnings.push(...layerWarnings(layer.name, { features, read: layer.features.length, used: used.length }));
+  warnings.push(...layerWarnings(layer.name, { features, read: layer.features.length, used: used.length, crossing: new Set(repairs.filter((repair) => repair.layer === layer.name).map(({ feature }) => feature)) }));
   const names = [...new Set(layer.features.flatMap(({ properties }) => Object.keys(properties)))].slice(0, limits.fields);
   return {
     name: layer.name,

@@ -85,16 +85,17 @@ function cleanRings(rings: readonly (readonly Position[])[], notes: CleaningNote
     const positions = cleanPositions(ring, notes);
     const first = positions[0];
     const last = positions[positions.length - 1];
-    if (first !== undefined && last !== undefined && (first[0] !== last[0] || first[1] !== last[1])) {
+    const isOpen = first !== undefined && last !== undefined && (first[0] !== last[0] || first[1] !== last[1]);
+    if (positions.length < (isOpen ? 3 : 4)) {
+      notes.droppedParts++;
+      if (index === 0) return null;
+      continue;
+    }
+    if (isOpen) {
       positions.push([first[0]!, first[1]!]);
       notes.closedRings++;
     }
-    if (positions.length >= 4) {
-      out.push(positions);
-      continue;
-    }
-    notes.droppedParts++;
-    if (index === 0) return null;
+    out.push(positions);
   }
   return out.length === 0 ? null : out;
 }

@@ -23,6 +23,8 @@ export function readKml(text: string, layerName: string): { layers: RawLayer[]; 
   return { layers: [{ name: layerName, features }], warnings };
 }
 
-function flat(geometry: Geometry | null): (Geometry | null)[] {
-  return geometry?.type === 'GeometryCollection' ? geometry.geometries.flatMap(flat) : [geometry];
+/** Folders, links and remarks come out without a geometry and are not shapes. */
+function flat(geometry: Geometry | null): Geometry[] {
+  if (geometry === null) return [];
+  return geometry.type === 'GeometryCollection' ? geometry.geometries.flatMap(flat) : [geometry];
 }

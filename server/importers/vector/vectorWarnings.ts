@@ -1,5 +1,5 @@
 import type { Feature } from 'geojson';
-import type { ImportWarning } from '../understood.ts';
+import type { GeometryRepair, ImportWarning } from '../understood.ts';
 import type { CleaningNotes } from './cleanGeometry.ts';
 import { areaHa } from './positions.ts';
 
@@ -13,20 +13,28 @@ export function noteWarnings({ closedRings, droppedHeights, droppedParts, badPos
   return warnings;
 }
 
+/** A shape that crosses itself, with the place and what a repair would make of its area. */
+export function repairWarning({ layer, feature, problem, areaBeforeHa, areaAfterHa, repaired }: GeometryRepair): ImportWarning {
+  const offer = repaired === null ? 'It cannot be repaired here; draw it again.' : `A repair would make its area ${areaAfterHa.toFixed(4)} ha instead of ${areaBeforeHa.toFixed(4)} ha.`;
+  return { code: 'self-crossing', text: `In "${layer}", shape ${feature + 1}: ${problem} ${offer}`, params: { layer, feature: feature + 1 } };
+}
+
 interface LayerCounts {
   features: readonly Feature[];
   /** Records in the file, and those with a shape that could be used. */
   read: number;
   used: number;
+  /** Features that cross themselves: their area means nothing. */
+  crossing: ReadonlySet<number>;
 }
 
 /** Empty, doubled and very small shapes of one layer. */
-export function layerWarnings(layer: string, { features, read, used }: LayerCounts): ImportWarning[] {
+export function layerWarnings(layer: string, { features, read, used, crossing }: LayerCounts): ImportWarning[] {
   const warnings: ImportWarning[] = [];
   if (used < read) warnings.push({ code: 'empty-shapes', text: `In "${layer}", ${counted(read - used, 'record has', 'records have')} no usable shape and ${read - used === 1 ? 'is' : 'are'} left out.`, params: { layer, count: read - used } });
   const doubled = countDoubled(features);
   if (doubled > 0) warnings.push({ code: 'doubled-shapes', text: `In "${layer}", ${counted(doubled, 'shape appears', 'shapes appear')} twice.`, params: { layer, count: doubled } });
-  const tiny = features.filter(({ geometry }) => (geometry.type === 'Polygon' || geometry.type === 'MultiPolygon') && areaHa(geometry) < 1e-4).length;
+  const tiny = features.filter(({ id, geometry }) => !crossing.has(Number(id)) && (geometry.type === 'Polygon' || geometry.type === 'MultiPolygon') && areaHa(geometry) < 1e-4).length;
   if (tiny > 0) warnings.push({ code: 'tiny-shapes', text: `In "${layer}", ${counted(tiny, 'shape is', 'shapes are')} smaller than 1 m².`, params: { layer, count: tiny } });
   return warnings;
 }

@@ -1,0 +1,38 @@
+import { Estate } from '../models/Estate.ts';
+import { demoDays } from './demoDays.ts';
+import { makeGround } from './ground.ts';
+import { seedBlocks } from './seedBlocks.ts';
+import { seedEstate } from './seedEstate.ts';
+import { seedFruit } from './seedFruit.ts';
+import { seedLayers } from './seedLayers.ts';
+
+const groundSeed = 7;
+
+export type SeedStep = 'estate' | 'blocks' | 'layers' | 'fruit' | 'zones' | 'plans' | 'lots';
+
+/**
+ * Lays the demo estate unless there is one. The same seed gives the same estate; its calendar is laid around today.
+ * Needs the compute pool and the file store open. Returns false when the demo estate was there already.
+ */
+export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (step: SeedStep) => void }): Promise<boolean> {
+  const step = options.onStep ?? (() => undefined);
+  if (options.reset) await Estate.query().where({ isDemo: true }).delete();
+  else if (await Estate.query().findOne({ isDemo: true })) return false;
+  const days = demoDays(options.now.toISOString().slice(0, 10));
+  const ground = makeGround(groundSeed);
+  try {
+    step('estate');
+    const made = await seedEstate(days);
+    step('blocks');
+    const laid = await seedBlocks(made, options.now);
+    step('layers');
+    await seedLayers(made, ground, days);
+    step('fruit');
+    await seedFruit(made, laid, { ground, days });
+  } catch (error) {
+    // Half a demo would look like a broken estate; the next start lays it anew.
+    await Estate.query().where({ isDemo: true }).delete();
+    throw error;
+  }
+  return true;
+}

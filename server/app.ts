@@ -17,7 +17,9 @@ import { describedApi } from './routes/openapi.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { jobRoutes } from './routes/jobs.ts';
 import { peopleRoutes } from './routes/people.ts';
+import { planRoutes } from './routes/plans.ts';
 import { recordRoutes } from './routes/records.ts';
+import { roundRoutes } from './routes/rounds.ts';
 import { sessionRoutes } from './routes/session.ts';
 
 const weekMs = 7 * 86_400_000;
@@ -81,6 +83,7 @@ function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes());
+  router.use(planRoutes(), roundRoutes({ publicUrl }));
   return router;
 }
 

@@ -1,6 +1,9 @@
 import { z } from 'zod';
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
+import { newPlan, planBasis, planChange, planRedraw, planView } from '../../shared/contracts/plans.ts';
+import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
+import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { credentials, personChange, session } from '../../shared/contracts/session.ts';
 
@@ -23,6 +26,19 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}', summary: 'Change an estate', body: estateChange },
   { method: 'post', path: '/api/estates/{estateId}/invitations', summary: 'Invite a person', body: newInvitation },
   { method: 'put', path: '/api/estates/{estateId}/people/{personId}/roles', summary: 'Set the roles of a person', body: rolesChange },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/plan-basis', summary: 'What a plan on these zones is computed from', answer: planBasis },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/plans', summary: 'Make a sampling plan and draw its vines', body: newPlan, answer: planView },
+  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}', summary: 'A plan with its vines', answer: planView },
+  { method: 'patch', path: '/api/estates/{estateId}/plans/{planId}', summary: 'Change a draft plan', body: planChange, answer: planView },
+  { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/lock', summary: 'Keep the vines of a plan as drawn', answer: planView },
+  { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/redraw', summary: 'Draw other vines, with a reason', body: planRedraw, answer: planView },
+  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/export', summary: 'The vines of a plan as a file (format=csv or gpx)' },
+  { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/rounds', summary: 'Send the vines of a plan to people for a day', body: newRound },
+  { method: 'get', path: '/api/estates/{estateId}/rounds', summary: 'Rounds; crew see their own' },
+  { method: 'get', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'All that a phone needs for a day', answer: fieldRound },
+  { method: 'patch', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'Open, close or call off a round', body: roundChange },
+  { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/acknowledge', summary: 'Note that a round was seen' },
+  { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },
   { method: 'get', path: '/api/estates/{estateId}/jobs/{jobId}', summary: 'Progress of a job', answer: jobView },
 ];
 

@@ -1,6 +1,7 @@
 import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Missing, Unusable } from '../errors.ts';
+import { restrictionViews } from '../ground/restrictionViews.ts';
 import { queueMail } from '../mail/outbox.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
 import { Block } from '../models/Block.ts';
@@ -14,27 +15,7 @@ import { Person } from '../models/Person.ts';
 export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<RestrictionView[]> {
   const query = EntryRestriction.query().where({ estateId: access.estateId }).orderBy('endsAt', 'desc').limit(300);
   if (options.blockId) query.where({ blockId: options.blockId });
-  const rows = await query;
-  const [blocks, people] = await Promise.all([
-    Block.query().findByIds([...new Set(rows.map((row) => row.blockId))]).where({ estateId: access.estateId }).select('id', 'name'),
-    Person.query().findByIds([...new Set(rows.flatMap((row) => [row.setBy, row.liftedBy ?? row.setBy]))]).select('id', 'name'),
-  ]);
-  const nameOf = (list: { id: string; name: string }[], id: string | null) => list.find((item) => item.id === id)?.name ?? '';
-  return rows.map((row) => ({
-    id: row.id,
-    blockId: row.blockId,
-    blockName: nameOf(blocks, row.blockId),
-    rowIds: row.rowIds,
-    startsAt: row.startsAt.toISOString(),
-    endsAt: row.endsAt.toISOString(),
-    product: row.product,
-    labelInterval: row.labelInterval,
-    noPickBefore: row.noPickBefore,
-    note: row.note,
-    setBy: nameOf(people, row.setBy),
-    lifted: row.liftedAt ? { at: row.liftedAt.toISOString(), by: nameOf(people, row.liftedBy), reason: row.liftedReason ?? '' } : null,
-    inForce: row.liftedAt === null && row.startsAt <= options.now && row.endsAt > options.now,
-  }));
+  return restrictionViews(access.estateId, await query, options.now);
 }
 
 /** Sets a restriction and tells everybody with access: safety notices cannot be muted. */

@@ -4,7 +4,9 @@ type Progress = (stage: string, progress: number) => void;
 type Computation = (input: never, progress: Progress) => unknown;
 
 /** One row a computation that runs in a thread; each loads its code when first asked for. */
-const computations = {} satisfies Record<string, () => Promise<Computation>>;
+const computations = {
+  shareRound: async () => (await import('../ground/shareRound.ts')).shareRound,
+} satisfies Record<string, () => Promise<Computation>>;
 
 export type ComputeName = keyof typeof computations;
 

@@ -95,6 +95,12 @@ export function planCounts(question: PlanQuestion): PlanCounts {
   return measureUp(question, draft);
 }
 
+/** The plan that given visits make, with every measure taken at each of them: a pilot, whose counts no margin decides. */
+export function planOfVisits(question: PlanQuestion, visits: readonly number[]): PlanCounts {
+  checkQuestion(question);
+  return measureUp(question, { visits, counts: question.measures.map(() => visits), zoneDrivers: question.zones.map(() => []), drivers: [] });
+}
+
 function checkQuestion({ zones, measures }: PlanQuestion): void {
   if (zones.length === 0) throw new AnalysisError('no_zones', 'A plan needs at least one zone.');
   if (measures.length === 0) throw new AnalysisError('no_measures', 'A plan needs at least one measure.');

@@ -1,0 +1,52 @@
+import { Router } from 'express';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { newPlan, planChange, planRedraw } from '../../shared/contracts/plans.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { exportPlan } from '../services/plans/exportPlan.ts';
+import { planBasisOf } from '../services/plans/planBasis.ts';
+import { listPlans, viewPlan } from '../services/plans/viewPlan.ts';
+import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
+
+const filter = z.object({ block: id.optional() });
+const exportQuery = z.object({ format: z.enum(['csv', 'gpx']) });
+
+/** Sampling plans: how many vines, which, and what walk. */
+export function planRoutes(): Router {
+  const router = Router({ mergeParams: true });
+  const read = allow('plans.margins', 'propose');
+
+  router.get('/zonings/:zoningId/plan-basis', read, async (request, response) => {
+    response.json(await planBasisOf(accessOf(request), idParam(request, 'zoningId')));
+  });
+  router.get('/zonings/:zoningId/plans', read, async (request, response) => {
+    const items = await listPlans(accessOf(request), { zoningId: idParam(request, 'zoningId') });
+    response.json({ items, total: items.length });
+  });
+  router.post('/zonings/:zoningId/plans', allow('plans.draw'), async (request, response) => {
+    response.status(201).json(await makePlan(accessOf(request), idParam(request, 'zoningId'), newPlan.parse(request.body)));
+  });
+  router.get('/plans', read, async (request, response) => {
+    const { block } = filter.parse(request.query);
+    const items = await listPlans(accessOf(request), block ? { blockId: block } : {});
+    response.json({ items, total: items.length });
+  });
+  router.get('/plans/:planId', read, async (request, response) => {
+    response.json(await viewPlan(accessOf(request), idParam(request, 'planId')));
+  });
+  router.patch('/plans/:planId', allow('plans.draw'), async (request, response) => {
+    response.json(await changePlan(accessOf(request), idParam(request, 'planId'), planChange.parse(request.body)));
+  });
+  router.post('/plans/:planId/lock', allow('plans.draw'), async (request, response) => {
+    response.json(await lockPlan(accessOf(request), idParam(request, 'planId'), new Date()));
+  });
+  router.post('/plans/:planId/redraw', allow('plans.draw'), async (request, response) => {
+    response.json(await redrawPlan(accessOf(request), idParam(request, 'planId'), planRedraw.parse(request.body), new Date()));
+  });
+  router.get('/plans/:planId/export', read, async (request, response) => {
+    const { format } = exportQuery.parse(request.query);
+    const file = await exportPlan(accessOf(request), idParam(request, 'planId'), format);
+    response.set('content-type', file.type).attachment(file.name).send(file.body);
+  });
+  return router;
+}

@@ -1,0 +1,39 @@
+import { Router } from 'express';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { newRound, roundChange } from '../../shared/contracts/rounds.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts';
+import { fieldRound } from '../services/rounds/fieldRound.ts';
+import { listRounds } from '../services/rounds/listRounds.ts';
+import { makeRound } from '../services/rounds/makeRound.ts';
+
+const filter = z.object({ block: id.optional(), plan: id.optional() });
+
+/** Rounds: a plan's vines sent to people for a day. Crew see their own. */
+export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
+  const router = Router({ mergeParams: true });
+  const own = allow('readings.record', 'own');
+
+  router.post('/plans/:planId/rounds', allow('rounds.assign'), async (request, response) => {
+    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    response.status(201).json(await makeRound(accessOf(request), idParam(request, 'planId'), newRound.parse(request.body), { publicUrl }));
+  });
+  router.get('/rounds', own, async (request, response) => {
+    const { block, plan } = filter.parse(request.query);
+    const items = await listRounds(accessOf(request), { ...(block ? { blockId: block } : {}), ...(plan ? { planId: plan } : {}) });
+    response.json({ items, total: items.length });
+  });
+  router.get('/rounds/:roundId', own, async (request, response) => {
+    response.json(await fieldRound(accessOf(request), idParam(request, 'roundId'), new Date()));
+  });
+  router.patch('/rounds/:roundId', own, async (request, response) => {
+    await changeRound(accessOf(request), idParam(request, 'roundId'), roundChange.parse(request.body), new Date());
+    response.status(204).end();
+  });
+  router.post('/rounds/:roundId/acknowledge', allow('notices.acknowledge'), async (request, response) => {
+    await acknowledgeRound(accessOf(request), idParam(request, 'roundId'), new Date());
+    response.status(204).end();
+  });
+  return router;
+}

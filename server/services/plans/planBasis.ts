@@ -1,0 +1,88 @@
+import type { Access } from '../../access/access.ts';
+import type { BasisMeasure, PlanBasis } from '../../../shared/contracts/plans.ts';
+import { estateSettings } from '../../../shared/contracts/estate.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
+import { spreadsOf } from '../../../shared/sampling/planBasis.ts';
+import type { HistoryReading } from '../../../shared/sampling/pooling.ts';
+import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
+import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
+import { Estate } from '../../models/Estate.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Season } from '../../models/Season.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { loadPlanGround, type PlanGround } from './planGround.ts';
+
+/** Other blocks are read only where a block's own history is too short to plan with. */
+const enoughOwnReadings = 8;
+const otherBlocksRead = 12;
+
+/** The basis of a plan on a zoning, for the screen that answers while margins move. */
+export async function planBasisOf(access: Access, zoningId: string): Promise<PlanBasis> {
+  return loadPlanBasis(access.estateId, await loadPlanGround(access.estateId, zoningId));
+}
+
+/** What is known when a plan is made on a zoning: zones, measures, and the spread of each with its source. */
+export async function loadPlanBasis(estateId: string, planGround: PlanGround): Promise<PlanBasis> {
+  const { zoning, ground, zoneOf, zones } = planGround;
+  const [estate, seasons, measures] = await Promise.all([
+    Estate.query().findById(estateId).throwIfNotFound(),
+    Season.query().where({ estateId }),
+    MeasureRecord.query().where({ estateId, inUse: true }).orderBy('code'),
+  ]);
+  const yearOf = new Map(seasons.map((season) => [season.id, Number(season.startsOn.slice(0, 4))]));
+  const season = seasons.find(({ id }) => id === zoning.seasonId)!;
+  const own = historyOf(await zonedReadings(estateId, { ground, zoneOf }), ground.block.id, yearOf);
+  const isShort = measures.some(({ code }) => (own.get(code)?.length ?? 0) < enoughOwnReadings);
+  const others = isShort ? await historyOfOtherBlocks(estateId, ground.block.id, yearOf) : new Map<string, HistoryReading[]>();
+  const { floorVines, impracticalSamples, dayHours, costPerHour, currency } = estateSettings.parse(estate.settings);
+  return {
+    zoningId: zoning.id,
+    zoningNumber: zoning.number,
+    blockId: ground.block.id,
+    blockName: ground.block.name,
+    seasonId: season.id,
+    seasonName: season.name,
+    zones,
+    measures: measures.map((measure) => basisMeasure(measure, {
+      block: ground.block.id,
+      zones: zones.map(({ number }) => String(number)),
+      season: yearOf.get(season.id)!,
+      readings: [...(own.get(measure.code) ?? []), ...(others.get(measure.code) ?? [])],
+    })),
+    settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency },
+  };
+}
+
+function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[] }): BasisMeasure {
+  const { code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, spreadKind, spreadValue, spreadSource, typicalMean } = measure;
+  return {
+    code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn,
+    confidence: measure.confidence as BasisMeasure['confidence'],
+    tradeSource: spreadSource,
+    spreads: spreadsOf({ ...history, tradeDefault: { kind: spreadKind, value: spreadValue }, typicalMean, resolution: 10 ** -decimals }),
+  };
+}
+
+/** Readings by measure as spreads are pooled from them: one value a vine and visit, checked, in a zone, not left out. */
+function historyOf(readings: ZonedReading[], block: string, yearOf: Map<string, number>): Map<string, HistoryReading[]> {
+  const usable = readings.filter(({ zone, excludedReason, state }) => zone > 0 && excludedReason === null && state !== 'provisional');
+  const perVine = groupBy(usable, ({ measureCode, visit, vineKey }) => `${measureCode}|${visit}|${vineKey}`);
+  const history = new Map<string, HistoryReading[]>();
+  for (const same of perVine.values()) {
+    const { measureCode, zone, seasonId, visit } = same[0]!;
+    const value = same.reduce((sum, reading) => sum + reading.value, 0) / same.length;
+    history.set(measureCode, [...(history.get(measureCode) ?? []), { block, zone: String(zone), season: yearOf.get(seasonId)!, visit, value }]);
+  }
+  return history;
+}
+
+async function historyOfOtherBlocks(estateId: string, blockId: string, yearOf: Map<string, number>): Promise<Map<string, HistoryReading[]>> {
+  const live = await Zoning.query().where({ estateId, state: 'live' }).whereNot({ blockId }).whereNotNull('labels').orderBy('publishedAt', 'desc').limit(otherBlocksRead);
+  const all = new Map<string, HistoryReading[]>();
+  for (const zoning of live) {
+    const ground = await loadBlockVines(estateId, zoning.blockId);
+    const readings = await zonedReadings(estateId, { ground, zoneOf: zonesOfVines(ground, zoning) });
+    for (const [code, list] of historyOf(readings, zoning.blockId, yearOf)) all.set(code, [...(all.get(code) ?? []), ...list]);
+  }
+  return all;
+}

@@ -1,0 +1,59 @@
+import type { Point } from 'geojson';
+import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
+import type { BasisZone } from '../../../shared/contracts/plans.ts';
+import type { XY } from '../../../shared/geo/coordinates.ts';
+import { toUtm } from '../../../shared/geo/utm.ts';
+import { eligibleVines } from '../../../shared/sampling/eligible.ts';
+import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
+import { Unusable } from '../../errors.ts';
+import { gridOf, isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { asGeoJson } from '../../models/geometry.ts';
+import { Block } from '../../models/Block.ts';
+import { Zone } from '../../models/Zone.ts';
+import { Zoning } from '../../models/Zoning.ts';
+
+/** A zoned block as plans and walks take it. */
+export interface PlanGround {
+  zoning: Zoning;
+  ground: BlockVines;
+  zoneOf: Uint8Array;
+  unusable: Uint8Array;
+  nearBorder: Uint8Array;
+  zones: BasisZone[];
+  gateXY: XY;
+  /** True when the block names no gate, so that walks begin at the start post of its first row. */
+  isGateAssumed: boolean;
+}
+
+/** Loads what a plan stands on. Refuses zonings without labels and zonings made on an outline since changed. */
+export async function loadPlanGround(estateId: string, zoningId: string): Promise<PlanGround> {
+  const zoning = await Zoning.query().findOne({ estateId, id: zoningId }).throwIfNotFound();
+  const ground = await loadBlockVines(estateId, zoning.blockId);
+  const name = ground.block.name;
+  if (ground.vines.count === 0) throw new Unusable('noRows', `${name} has no rows yet. Enter row bearing and spacing before planning samples.`);
+  const zoneRows = await Zone.query().where({ estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'colour');
+  if (zoning.labels === null || zoneRows.length === 0) throw new Unusable('noZones', `Zoning ${zoning.number} of ${name} has no zones yet. Choose a number of zones first.`);
+  const grid = gridOf(ground);
+  if (zoning.gridKey !== grid.key) throw new Unusable('zoningOutOfDate', `The outline of ${name} changed after zoning ${zoning.number} was made. Run the zoning again, then plan.`);
+  const zoneOf = zonesOfVines(ground, zoning);
+  const unusable = Uint8Array.from(ground.states, (state) => (state === null || state === 'sick' ? 0 : 1));
+  const nearBorder = vinesNearBorder({ grid, labels: decodeLabels(zoning.labels) }, { ...ground.vines, zoneOfVine: zoneOf });
+  const zones = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ id, number, name: zoneName, colour, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder }, number) }));
+  return { zoning, ground, zoneOf, unusable, nearBorder, zones: zones.filter(({ vines }) => vines > 0), ...(await gateOf(estateId, ground)) };
+}
+
+function vinesOfZone({ ground, zoneOf, unusable, nearBorder }: Pick<PlanGround, 'ground' | 'zoneOf' | 'unusable' | 'nearBorder'>, zone: number): { vines: number; eligible: number } {
+  const candidates: number[] = [];
+  zoneOf.forEach((of, vine) => of === zone && candidates.push(vine));
+  const vines = candidates.filter((vine) => isBearing(ground.states[vine]!)).length;
+  const strict = eligibleVines({ table: ground.vines, candidates, unusable, nearBorder }, 0).vines.length;
+  // Rules are relaxed before a draw comes up short, so a narrow zone can still give its bearing vines.
+  return { vines, eligible: strict >= 2 ? strict : vines };
+}
+
+async function gateOf(estateId: string, ground: BlockVines): Promise<Pick<PlanGround, 'gateXY' | 'isGateAssumed'>> {
+  const { gate } = await Block.query().findOne({ estateId, id: ground.block.id }).select(asGeoJson('gate', 9).as('gate')).throwIfNotFound();
+  if (gate === null) return { gateXY: ground.rows.rows[0]!.pieces[0]!.fromXY, isGateAssumed: true };
+  const [lon, lat] = (gate as Point).coordinates as [number, number];
+  return { gateXY: toUtm([lon, lat], ground.block.epsg), isGateAssumed: false };
+}

@@ -1,0 +1,109 @@
+import type { Point } from 'geojson';
+import type { z } from 'zod';
+import { planChoices, type PlanBasis, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import { vineLabel } from '../../../shared/geo/numbering.ts';
+import type { Access } from '../../access/access.ts';
+import { loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
+import { Block } from '../../models/Block.ts';
+import { asGeoJson } from '../../models/geometry.ts';
+import { Person } from '../../models/Person.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Round } from '../../models/Round.ts';
+import { Target } from '../../models/Target.ts';
+import { Zoning } from '../../models/Zoning.ts';
+
+/** The stored record of a plan's calculation. */
+export interface PlanRecord {
+  basis: PlanBasis;
+  counts: { visits: number; hours: number };
+  draw: z.infer<typeof zoneDrawFacts>[];
+  walk: z.infer<typeof walkFacts> | null;
+}
+
+interface StoredDraw {
+  at: string;
+  by: string;
+  reason: string;
+  seed: number;
+  targets: unknown[];
+}
+
+/** Plans of the estate, of a block or of a zoning, newest first. */
+export async function listPlans(access: Access, filter: { zoningId?: string; blockId?: string }): Promise<PlanSummary[]> {
+  const query = Plan.query().where({ estateId: access.estateId }).orderBy('createdAt', 'desc').limit(200);
+  if (filter.zoningId) query.where({ zoningId: filter.zoningId });
+  if (filter.blockId) query.where({ blockId: filter.blockId });
+  const plans = await query;
+  return summariesOf(access, plans);
+}
+
+export async function viewPlan(access: Access, planId: string): Promise<PlanView> {
+  const plan = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
+  const [summary] = await summariesOf(access, [plan]);
+  const ground = await loadBlockVines(access.estateId, plan.blockId);
+  const targets = await Target.query().where({ estateId: access.estateId, planId }).orderBy('walkOrder').select('targets.*', asGeoJson('position', 7).as('position'));
+  const record = plan.result as PlanRecord;
+  const draws = plan.draws as StoredDraw[];
+  const people = await Person.query().findByIds([...new Set(draws.map(({ by }) => by))]).select('id', 'name');
+  const zoneNumber = new Map(record.basis.zones.map(({ id, number }) => [id, number]));
+  return {
+    ...summary!,
+    choices: planChoices.parse(plan.options),
+    seed: plan.seed,
+    basis: record.basis,
+    draw: record.draw,
+    walk: record.walk,
+    targets: targets.map((target) => {
+      const [lon, lat] = (target.position as Point).coordinates as [number, number];
+      return {
+        id: target.id, ...vineWords(ground, target.rowId, target.ordinal), zone: zoneNumber.get(target.zoneId) ?? 0, drawOrder: target.drawOrder, walkOrder: target.walkOrder,
+        reserve: target.reserveRowId === null || target.reserveOrdinal === null ? null : vineWords(ground, target.reserveRowId, target.reserveOrdinal),
+        measures: target.measureCodes, position: [lon, lat] as [number, number],
+      };
+    }),
+    oldDraws: draws.map(({ at, by, reason, seed, targets: old }) => ({ at, by: people.find(({ id }) => id === by)?.name ?? '', reason, seed, vines: old.length })),
+  };
+}
+
+/** A vine as people in the block name it. */
+export function vineWords(ground: BlockVines, rowId: string, ordinal: number): { rowId: string; rowLabel: string; ordinal: number; vineNumber: number } {
+  const index = ground.rowIndexOf.get(rowId);
+  if (index === undefined) return { rowId, rowLabel: '', ordinal, vineNumber: ordinal };
+  return { rowId, rowLabel: ground.stored[index]!.label, ordinal, vineNumber: vineLabel(ground.rows.rows[index]!, ordinal, ground.block.vineOneEnd) };
+}
+
+async function summariesOf(access: Access, plans: Plan[]): Promise<PlanSummary[]> {
+  const { estateId } = access;
+  const [blocks, zonings, rounds, targets] = await Promise.all([
+    Block.query().where({ estateId }).findByIds([...new Set(plans.map(({ blockId }) => blockId))]).select('id', 'name'),
+    Zoning.query().where({ estateId }).findByIds([...new Set(plans.map(({ zoningId }) => zoningId))]).select('id', 'number'),
+    countBy(Round.query().where({ estateId }).whereIn('planId', plans.map(({ id }) => id)).groupBy('planId').select('planId').count('id as count')),
+    countBy(Target.query().where({ estateId }).whereIn('planId', plans.map(({ id }) => id)).groupBy('planId').select('planId').count('id as count')),
+  ]);
+  return plans.map((plan) => ({
+    id: plan.id,
+    name: plan.name,
+    state: plan.state,
+    isPilot: plan.isPilot,
+    zoningId: plan.zoningId,
+    zoningNumber: zonings.find(({ id }) => id === plan.zoningId)?.number ?? 0,
+    blockId: plan.blockId,
+    blockName: blocks.find(({ id }) => id === plan.blockId)?.name ?? '',
+    vines: targets.get(plan.id) ?? 0,
+    hours: hoursOf(plan.result as PlanRecord),
+    measures: planChoices.parse(plan.options).measures.map(({ code }) => code),
+    rounds: rounds.get(plan.id) ?? 0,
+    createdAt: plan.createdAt.toISOString(),
+    lockedAt: plan.lockedAt?.toISOString() ?? null,
+  }));
+}
+
+/** Hours as walked and worked where the walk is known, else as planned. */
+function hoursOf({ counts, walk }: PlanRecord): number {
+  return walk === null ? counts.hours : (walk.walkingS + walk.serviceS) / 3600;
+}
+
+async function countBy(query: PromiseLike<unknown>): Promise<Map<string, number>> {
+  const rows = (await query) as { planId: string; count: number }[];
+  return new Map(rows.map(({ planId, count }) => [planId, Number(count)]));
+}

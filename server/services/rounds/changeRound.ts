@@ -1,0 +1,56 @@
+import type { Transaction } from 'objection';
+import type { z } from 'zod';
+import type { roundChange } from '../../../shared/contracts/rounds.ts';
+import { restrictionsAt } from '../../../shared/field/entry.ts';
+import { requireReach, type Access } from '../../access/access.ts';
+import { Clash, Missing } from '../../errors.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Block } from '../../models/Block.ts';
+import { EntryRestriction } from '../../models/EntryRestriction.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Round } from '../../models/Round.ts';
+import { RoundPerson } from '../../models/RoundPerson.ts';
+import { Target } from '../../models/Target.ts';
+import { seesOwnRoundsOnly } from './listRounds.ts';
+
+/** Notes that a person has seen their round. Seen twice is seen once. */
+export async function acknowledgeRound(access: Access, roundId: string, now: Date): Promise<void> {
+  await RoundPerson.transaction(async (trx) => {
+    const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
+    if (!member) throw new Missing('This round was not sent to you.');
+    if (member.acknowledgedAt !== null) return;
+    await RoundPerson.query(trx).where({ estateId: access.estateId, roundId, personId: access.personId }).patch({ acknowledgedAt: now });
+    await writeAudit(trx, access, { action: 'rounds.acknowledge', subjectType: 'round', subjectId: roundId });
+  });
+}
+
+/**
+ * Opens, closes or calls off a round. A round cannot be opened where an entry restriction is in force for its rows.
+ * Opening an open round or closing a closed one changes nothing, so that a phone may send it again.
+ */
+export async function changeRound(access: Access, roundId: string, change: z.infer<typeof roundChange>, now: Date): Promise<void> {
+  if (change.state === 'called off') requireReach(access, 'rounds.assign');
+  await Round.transaction(async (trx) => {
+    const round = await Round.query(trx).findOne({ estateId: access.estateId, id: roundId }).forUpdate().throwIfNotFound();
+    const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
+    if (!member && seesOwnRoundsOnly(access)) throw new Missing();
+    if (round.state === change.state) return;
+    if (round.state === 'called off') throw new Clash('calledOff', 'This round was called off. Ask who sent it.');
+    if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
+    await round.$query(trx).patch({ state: change.state, closedAt: change.state === 'closed' ? now : null });
+    await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before: { state: round.state }, after: change });
+  });
+}
+
+async function refuseRestricted(trx: Transaction, round: Round, { targetIds, at }: { targetIds: string[] | null; at: string }): Promise<void> {
+  const { estateId, blockId } = round;
+  const rules = await EntryRestriction.query(trx).where({ estateId, blockId }).whereNull('liftedAt');
+  const targets = Target.query(trx).where({ estateId, planId: round.planId }).distinct('rowId');
+  if (targetIds !== null) targets.whereIn('id', targetIds);
+  const rowIds = (await targets).map(({ rowId }) => rowId);
+  const [longest] = restrictionsAt(rules.map((rule) => ({ rowIds: rule.rowIds, startsAt: rule.startsAt.toISOString(), endsAt: rule.endsAt.toISOString(), lifted: rule.liftedAt, product: rule.product })), { at, rowIds });
+  if (!longest) return;
+  const [block, estate] = [await Block.query(trx).findOne({ estateId, id: blockId }).throwIfNotFound(), await Estate.query(trx).findById(estateId).throwIfNotFound()];
+  const until = new Intl.DateTimeFormat('en-GB', { timeZone: estate.timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(longest.endsAt));
+  throw new Clash('entryRestricted', `Do not enter ${block.name} until ${until} (${longest.product}). The product label, posted signs, the responsible person and local law come first.`, { until: longest.endsAt });
+}

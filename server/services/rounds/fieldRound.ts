@@ -1,0 +1,109 @@
+import { estateSettings } from '../../../shared/contracts/estate.ts';
+import { planChoices, type PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { FieldMeasure, FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
+import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
+import { firstOrdinal } from '../../../shared/geo/vines.ts';
+import type { Access } from '../../access/access.ts';
+import { Missing } from '../../errors.ts';
+import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { restrictionViews } from '../../ground/restrictionViews.ts';
+import { EntryRestriction } from '../../models/EntryRestriction.ts';
+import { Estate } from '../../models/Estate.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Person } from '../../models/Person.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Reading } from '../../models/Reading.ts';
+import { Round } from '../../models/Round.ts';
+import { RoundPerson } from '../../models/RoundPerson.ts';
+import { Target } from '../../models/Target.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { vineWords } from '../plans/viewPlan.ts';
+import { seesOwnRoundsOnly } from './listRounds.ts';
+import type { RoundWalk, StoredStop } from './roundWalk.ts';
+
+/** A day's work complete: what a phone needs from the morning until it meets the server again. */
+export async function fieldRound(access: Access, roundId: string, now: Date): Promise<FieldRound> {
+  const { estateId, personId } = access;
+  const round = await Round.query().findOne({ estateId, id: roundId }).throwIfNotFound();
+  const members = await RoundPerson.query().where({ estateId, roundId });
+  const me = members.find((member) => member.personId === personId);
+  if (!me && seesOwnRoundsOnly(access)) throw new Missing();
+  const [estate, plan, ground, targets, people] = await Promise.all([
+    Estate.query().findById(estateId).throwIfNotFound(),
+    Plan.query().findOne({ estateId, id: round.planId }).throwIfNotFound(),
+    loadBlockVines(estateId, round.blockId),
+    Target.query().where({ estateId, planId: round.planId }),
+    Person.query().findByIds(members.map((member) => member.personId)).select('id', 'name'),
+  ]);
+  const { basis } = plan.result as { basis: PlanBasis };
+  const { shares } = round.walk as RoundWalk;
+  const stops = (me ? shares.filter((share) => share.personId === personId) : shares).flatMap((share) => share.stops);
+  const zoneNumber = new Map(basis.zones.map(({ id, number }) => [id, number]));
+  const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, zoneNumber.get(zoneId) ?? 0]));
+  const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId');
+  const { block } = ground;
+  return {
+    id: round.id, planId: plan.id, planName: plan.name, blockId: block.id, blockName: block.name, estateName: estate.name,
+    onDate: round.onDate, state: round.state, gate: round.gate, notes: round.notes,
+    startPostColour: block.startPostColour, endPostColour: block.endPostColour, vineOneEnd: block.vineOneEnd,
+    people: shares.map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', vines: share.stops.length })),
+    zones: basis.zones.map(({ number, name, colour, vines }) => ({ number, name, colour, vines, targets: stops.filter(({ targetId }) => zoneOfTarget.get(targetId) === number).length })),
+    measures: await fieldMeasures(estateId, plan),
+    rows: await fieldRows(estateId, ground, plan),
+    stops: stops.flatMap((stop) => stopOf(stop, { ground, target: targets.find(({ id }) => id === stop.targetId), zone: zoneOfTarget.get(stop.targetId) ?? 0 })),
+    received: readings.filter((reading) => reading.personId === personId).map(({ id, targetId, measureCode, value }) => ({ id, targetId, measureCode, value, zone: targetId === null ? 0 : zoneOfTarget.get(targetId) ?? 0 })),
+    doneTargetIds: [...new Set(readings.flatMap(({ targetId }) => (targetId === null ? [] : [targetId])))],
+    safety: safetyOf(estate),
+    restrictions: await restrictionViews(estateId, await EntryRestriction.query().where({ estateId, blockId: block.id }).where('endsAt', '>', now).orderBy('endsAt', 'desc'), now),
+    checkedAt: now.toISOString(),
+    acknowledgedAt: me?.acknowledgedAt?.toISOString() ?? null,
+  };
+}
+
+function safetyOf(estate: Estate): FieldRound['safety'] {
+  const { emergencyNumber, meetingPoint } = estateSettings.parse(estate.settings);
+  return { emergencyNumber, meetingPoint };
+}
+
+async function fieldMeasures(estateId: string, plan: Plan): Promise<FieldMeasure[]> {
+  const chosen = planChoices.parse(plan.options).measures;
+  const rows = await MeasureRecord.query().where({ estateId }).whereIn('code', chosen.map(({ code }) => code));
+  return chosen.flatMap((choice) => {
+    const row = rows.find(({ code }) => code === choice.code);
+    if (!row) return [];
+    const { code, name, unit, decimals, minimum, maximum, skewed, measuredIn } = row;
+    return [{ code, name, unit, decimals, minimum, maximum, skewed, measuredIn, margin: choice.margin ?? row.margin, marginKind: choice.marginKind ?? row.marginKind, confidence: choice.confidence ?? row.confidence }];
+  });
+}
+
+async function fieldRows(estateId: string, ground: BlockVines, plan: Plan): Promise<FieldRow[]> {
+  const zoning = await Zoning.query().findOne({ estateId, id: plan.zoningId }).throwIfNotFound();
+  const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning));
+  return ground.stored.map((row, index) => {
+    const [from, to] = [ground.vines.rowStart[index]!, ground.vines.rowStart[index + 1]!];
+    const known: FieldRow['known'] = [];
+    for (let vine = from; vine < to; vine++) {
+      const state = ground.states[vine];
+      if (state) known.push({ ordinal: ground.vines.ordinal[vine]!, state });
+    }
+    return {
+      id: row.id, label: row.label, firstOrdinal: firstOrdinal(ground.rows.rows[index]!), vineCount: row.vineCount, known,
+      runs: runs.filter(({ rowIndex }) => rowIndex === index).map(({ label, fromOrdinal, toOrdinal }) => ({ zone: label, from: fromOrdinal, to: toOrdinal })),
+    };
+  });
+}
+
+/** A stop with the vine's words; a vine whose row has gone since is left out of the walk. */
+function stopOf(stop: StoredStop, { ground, target, zone }: { ground: BlockVines; target: Target | undefined; zone: number }): WalkStop[] {
+  const index = target ? ground.rowIndexOf.get(target.rowId) : undefined;
+  if (!target || index === undefined) return [];
+  const { targetId, number, enterBy, heading, ahead, aheadFrom, opensZone } = stop;
+  return [{
+    targetId, number, enterBy, heading, ahead, aheadFrom, opensZone, zone,
+    ...vineWords(ground, target.rowId, target.ordinal),
+    rowLabelWas: ground.stored[index]!.labelWas,
+    drawOrder: target.drawOrder,
+    measures: target.measureCodes,
+    reserve: target.reserveRowId === null || target.reserveOrdinal === null ? null : vineWords(ground, target.reserveRowId, target.reserveOrdinal),
+  }];
+}

@@ -1,0 +1,91 @@
+import type { Transaction } from 'objection';
+import { may } from '../../../shared/catalog/permissions.ts';
+import type { PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { NewRound } from '../../../shared/contracts/rounds.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, Unusable } from '../../errors.ts';
+import type { ShareInput, WalkShare } from '../../ground/shareRound.ts';
+import { queueMail } from '../../mail/outbox.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Membership } from '../../models/Membership.ts';
+import { Person } from '../../models/Person.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Round } from '../../models/Round.ts';
+import { RoundPerson } from '../../models/RoundPerson.ts';
+import { Target } from '../../models/Target.ts';
+import { runCompute } from '../../workers/computePool.ts';
+import { loadPlanGround } from '../plans/planGround.ts';
+import type { RoundWalk } from './roundWalk.ts';
+
+/** Sends a plan's vines to people for a day: the walk is shared so that loads are even, and each gets a mail. */
+export async function makeRound(access: Access, planId: string, input: NewRound, options: { publicUrl: string }): Promise<{ id: string }> {
+  const { estateId } = access;
+  const plan = await Plan.query().findOne({ estateId, id: planId }).throwIfNotFound();
+  if (plan.state === 'draft') throw new Clash('notLocked', `"${plan.name}" is a draft. Lock it, so that its vines stay as drawn, then send it.`);
+  if (plan.state === 'closed') throw new Clash('closed', `"${plan.name}" is closed. Make a new plan.`);
+  const people = await walkersOf(estateId, input.people);
+  const targets = await Target.query().where({ estateId, planId }).orderBy('walkOrder');
+  const shares = await sharesOf(access, plan, targets, people.length);
+  return Round.transaction(async (trx) => {
+    const walk: RoundWalk = {
+      shares: people.map((person, i) => ({
+        personId: person.id, lengthM: shares[i]!.lengthM, walkingS: shares[i]!.walkingS, serviceS: shares[i]!.serviceS,
+        stops: shares[i]!.lines.map(({ target, number, enterBy, heading, ahead, aheadFrom, opensZone }) => ({ targetId: targets[target]!.id, number, enterBy, heading, ahead, aheadFrom, opensZone })),
+      })),
+    };
+    const round = await Round.query(trx).insert({ estateId, planId, blockId: plan.blockId, onDate: input.onDate, gate: input.gate, notes: input.notes, walk, createdBy: access.personId });
+    await RoundPerson.query(trx).insert(walk.shares.map(({ personId, stops }) => ({ estateId, roundId: round.id, personId, targetIds: stops.map(({ targetId }) => targetId) })));
+    await tell(trx, { access, plan, input, people, walk, link: `${options.publicUrl}/e/${estateId}/field/rounds/${round.id}` });
+    await writeAudit(trx, access, { action: 'rounds.send', subjectType: 'round', subjectId: round.id, subjectName: plan.name, after: { ...input, vines: targets.length } });
+    return { id: round.id };
+  });
+}
+
+/** The people of a round, in the order chosen; all must be allowed to record here. */
+async function walkersOf(estateId: string, ids: string[]): Promise<Person[]> {
+  const memberships = await Membership.query().where({ estateId }).whereIn('personId', ids).whereNull('endedAt').whereRaw('starts_on <= current_date and (ends_on is null or ends_on >= current_date)').select('personId', 'role');
+  const people = await Person.query().findByIds(ids).select('id', 'name', 'email', 'language');
+  return ids.map((id) => {
+    const person = people.find((one) => one.id === id);
+    const roles = memberships.filter(({ personId }) => personId === id).map(({ role }) => role);
+    if (!person || !may(roles, 'readings.record', 'own')) throw new Unusable('notAWalker', `${person && roles.length > 0 ? person.name : 'Somebody chosen'} may not record readings in this estate. Choose people who may, or change the role first.`);
+    return person;
+  });
+}
+
+async function sharesOf(access: Access, plan: Plan, targets: Target[], people: number): Promise<WalkShare[]> {
+  const { ground, gateXY } = await loadPlanGround(access.estateId, plan.zoningId);
+  const { basis } = plan.result as { basis: PlanBasis };
+  const seconds = new Map(basis.measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
+  const zoneNumber = new Map(basis.zones.map(({ id, number }) => [id, number]));
+  const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => ({
+    rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone: zoneNumber.get(zoneId) ?? 0,
+    serviceS: measureCodes.reduce((sum, code) => sum + (seconds.get(code) ?? 0), 0),
+  }));
+  if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);
+  const request: ShareInput = { rows: ground.rows, vines, gateXY, people };
+  return runCompute<WalkShare[]>('shareRound', request, { lane: 'quick' });
+}
+
+interface Assignment {
+  access: Access;
+  plan: Plan;
+  input: NewRound;
+  people: Person[];
+  walk: RoundWalk;
+  link: string;
+}
+
+async function tell(trx: Transaction, { access, plan, input, people, walk, link }: Assignment): Promise<void> {
+  const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const { basis } = plan.result as { basis: PlanBasis };
+  for (const [i, person] of people.entries()) {
+    if (person.email === null) continue;
+    const date = new Intl.DateTimeFormat(person.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${input.onDate}T12:00:00Z`));
+    await queueMail(trx, {
+      estateId: access.estateId, kind: 'assignment', to: { address: person.email, name: person.name, language: person.language },
+      facts: { estate: estate.name, block: basis.blockName, date, vines: walk.shares[i]!.stops.length, gate: input.gate || '–', link, notes: input.notes },
+    });
+  }
+}

@@ -1,0 +1,117 @@
+import { z } from 'zod';
+import { id, isoDate } from './common.ts';
+import { postColour } from './blocks.ts';
+import { restrictionView } from './restrictions.ts';
+import { vineState } from './rows.ts';
+
+export const newRound = z.object({
+  onDate: isoDate,
+  people: z.array(id).min(1, 'Choose who walks.').max(20).refine((people) => new Set(people).size === people.length, 'Each person once.'),
+  gate: z.string().trim().max(120).default(''),
+  notes: z.string().trim().max(1000).default(''),
+});
+export type NewRound = z.infer<typeof newRound>;
+
+export const roundState = z.enum(['sent', 'open', 'closed', 'called off']);
+export const roundChange = z.object({ state: z.enum(['open', 'closed', 'called off']), /** When the phone began; the server's clock otherwise. */ startedAt: z.iso.datetime({ offset: true }).optional() });
+
+export const roundPerson = z.object({ id, name: z.string(), vines: z.number().int(), seconds: z.number(), acknowledgedAt: z.string().nullable() });
+
+export const roundSummary = z.object({
+  id,
+  planId: id,
+  planName: z.string(),
+  blockId: id,
+  blockName: z.string(),
+  onDate: z.string(),
+  state: roundState,
+  gate: z.string(),
+  notes: z.string(),
+  people: z.array(roundPerson),
+  vines: z.number().int(),
+  /** Vines with at least one reading. */
+  done: z.number().int(),
+  measures: z.array(z.string()),
+  isMine: z.boolean(),
+});
+export type RoundSummary = z.infer<typeof roundSummary>;
+
+/** One stop of a person's walk. Everything spoken of by number is as people in the block count it. */
+export const walkStop = z.object({
+  targetId: id,
+  number: z.number().int(),
+  rowId: id,
+  rowLabel: z.string(),
+  rowLabelWas: z.string().nullable(),
+  ordinal: z.number().int(),
+  vineNumber: z.number().int(),
+  zone: z.number().int(),
+  drawOrder: z.number().int(),
+  enterBy: z.enum(['start', 'end', 'gap', 'inside']),
+  heading: z.enum(['toEnd', 'toStart']),
+  ahead: z.number().int(),
+  aheadFrom: z.enum(['entry', 'lastVine']),
+  opensZone: z.boolean(),
+  measures: z.array(z.string()),
+  reserve: z.object({ rowId: id, rowLabel: z.string(), ordinal: z.number().int(), vineNumber: z.number().int() }).nullable(),
+});
+export type WalkStop = z.infer<typeof walkStop>;
+
+export const fieldRow = z.object({
+  id,
+  label: z.string(),
+  firstOrdinal: z.number().int(),
+  vineCount: z.number().int(),
+  runs: z.array(z.object({ zone: z.number().int(), from: z.number().int(), to: z.number().int() })),
+  known: z.array(z.object({ ordinal: z.number().int(), state: vineState })),
+});
+export type FieldRow = z.infer<typeof fieldRow>;
+
+export const fieldMeasure = z.object({
+  code: z.string(),
+  name: z.string(),
+  unit: z.string(),
+  decimals: z.number().int(),
+  minimum: z.number(),
+  maximum: z.number(),
+  margin: z.number(),
+  marginKind: z.enum(['absolute', 'relative']),
+  confidence: z.number(),
+  skewed: z.boolean(),
+  measuredIn: z.enum(['field', 'lab']),
+});
+export type FieldMeasure = z.infer<typeof fieldMeasure>;
+
+/** A value of the reader's own that the server has already, for "enough here" after a change of phone. */
+export const fieldReading = z.object({ id, targetId: id.nullable(), measureCode: z.string(), value: z.number(), zone: z.number().int() });
+
+/** A day's work as it is kept on the phone: nothing else is needed until evening. */
+export const fieldRound = z.object({
+  id,
+  planId: id,
+  planName: z.string(),
+  blockId: id,
+  blockName: z.string(),
+  estateName: z.string(),
+  onDate: z.string(),
+  state: roundState,
+  gate: z.string(),
+  notes: z.string(),
+  startPostColour: postColour,
+  endPostColour: postColour,
+  vineOneEnd: z.enum(['start', 'end']),
+  people: z.array(z.object({ id, name: z.string(), vines: z.number().int() })),
+  zones: z.array(z.object({ number: z.number().int(), name: z.string(), colour: z.string().nullable(), vines: z.number().int(), targets: z.number().int() })),
+  measures: z.array(fieldMeasure),
+  rows: z.array(fieldRow),
+  stops: z.array(walkStop),
+  received: z.array(fieldReading),
+  /** Vines that somebody has read already, whoever it was. */
+  doneTargetIds: z.array(id),
+  safety: z.object({ emergencyNumber: z.string(), meetingPoint: z.string() }),
+  restrictions: z.array(restrictionView),
+  /** When the server looked for restrictions. */
+  checkedAt: z.string(),
+  acknowledgedAt: z.string().nullable(),
+});
+export type FieldRound = z.infer<typeof fieldRound>;

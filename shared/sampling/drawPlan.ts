@@ -1,0 +1,62 @@
+import type { XY } from '../geo/coordinates.ts';
+import type { BlockRows } from '../geo/rows.ts';
+import type { VineTable } from '../geo/vines.ts';
+import { drawTargets, type ZoneDraw } from './targets.ts';
+import { walkBlock } from './walkBlock.ts';
+import { walkTime, type PacedGround } from './walkTime.ts';
+
+/** Ground, counts and seed of a draw. */
+export interface PlanDrawRequest {
+  readonly rows: BlockRows;
+  readonly table: VineTable;
+  readonly zoneOfVine: ArrayLike<number>;
+  /** Not 0 for vines that never are targets. */
+  readonly unusable: ArrayLike<number>;
+  readonly nearBorder: ArrayLike<number>;
+  readonly gateXY: XY;
+  /** Vines of each zone, and samples of each measure there. */
+  readonly wanted: readonly { readonly zone: number; readonly visits: number; readonly counts: readonly number[] }[];
+  readonly measures: readonly { readonly code: string; readonly secondsPerSample: number }[];
+  readonly seed: number;
+  readonly ground?: PacedGround;
+}
+
+export interface PlannedTarget {
+  readonly vine: number;
+  readonly rowIndex: number;
+  readonly ordinal: number;
+  readonly zone: number;
+  readonly drawOrder: number;
+  readonly walkOrder: number;
+  readonly reserve: number | null;
+  readonly measures: readonly string[];
+}
+
+export interface PlanDraw {
+  readonly zones: readonly ZoneDraw[];
+  readonly targets: readonly PlannedTarget[];
+  readonly lengthM: number;
+  readonly walkingS: number;
+  readonly serviceS: number;
+  readonly isGroundAssumedOpen: boolean;
+}
+
+/** Target vines of a plan in walking order, and what the walk from the gate and back takes. */
+export function drawPlan(request: PlanDrawRequest): PlanDraw {
+  const { rows, table, zoneOfVine, unusable, nearBorder, gateXY, wanted, measures, seed } = request;
+  const zones = drawTargets({ table, zoneOfVine, unusable, nearBorder, seed, wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
+  const drawn = zones.flatMap((draw, i) =>
+    draw.targets.map((target) => ({ ...target, zone: draw.zone, measures: measures.filter((_, j) => target.drawOrder <= wanted[i]!.counts[j]!).map(({ code }) => code) })));
+  if (drawn.length === 0) return { zones, targets: [], lengthM: 0, walkingS: 0, serviceS: 0, isGroundAssumedOpen: false };
+  const { walk, assumedOpen } = walkBlock({ rows, vines: drawn, gateXY, ...(request.ground ? { ground: request.ground } : {}) });
+  const secondsOf = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
+  const time = walkTime(walk, (target) => drawn[target]!.measures.reduce((sum, code) => sum + secondsOf.get(code)!, 0));
+  return {
+    zones,
+    targets: walk.stops.map(({ target }, i) => ({ ...drawn[target]!, walkOrder: i + 1 })),
+    lengthM: walk.lengthM,
+    walkingS: time.walkingS,
+    serviceS: time.serviceS,
+    isGroundAssumedOpen: assumedOpen,
+  };
+}

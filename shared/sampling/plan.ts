@@ -1,0 +1,79 @@
+import { confidences } from '../catalog/measures.ts';
+import type { BasisMeasure, PlanBasis, PlanChoices } from '../contracts/plans.ts';
+import { AnalysisError } from '../analysis/analysisError.ts';
+import { planForBudget, type Budget, type BudgetAnswer } from './budget.ts';
+import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
+import { pilotQuotas } from './pilot.ts';
+import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
+import { tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
+
+/**
+ * A plan from what is known of the ground (basis) and what a person chooses. The browser calls this while a slider
+ * moves and the server calls it when the plan is saved: one answer. Cost: a few milliseconds.
+ */
+export interface PlanAnswer {
+  readonly question: PlanQuestion;
+  readonly counts: PlanCounts;
+  /** Null when the plan is within its limits, and for a pilot. */
+  readonly advice: ImpracticalAdvice | null;
+  readonly limits: PracticalLimits;
+}
+
+export function answerPlan(basis: PlanBasis, choices: PlanChoices): PlanAnswer {
+  const question = questionOf(basis, choices);
+  const limits = limitsOf(basis, choices);
+  if (choices.isPilot) {
+    const quotas = pilotQuotas(question.zones.map(({ zone, vines, eligibleVines = vines }) => ({ zone, vines: eligibleVines })), { total: choices.pilotVines, minimumPerZone: minimumOf(basis, choices) });
+    return { question, counts: planOfVisits(question, quotas.map(({ n }) => n)), advice: null, limits };
+  }
+  const counts = planCounts(question);
+  return { question, counts, advice: adviseImpractical({ question, plan: counts, limits, confidences }), limits };
+}
+
+/** The same plan turned round: what the time, vines or money give. Margins keep the proportions that were chosen. */
+export function answerBudget(basis: PlanBasis, choices: PlanChoices, budget: Budget): BudgetAnswer {
+  return planForBudget(questionOf(basis, choices), budget);
+}
+
+/** Vines of the whole plan against the margin of one measure, for each confidence on offer. */
+export function answerTradeOff(basis: PlanBasis, choices: PlanChoices, code: string): TradeOffCurve[] {
+  return tradeOffCurves(questionOf(basis, choices), code, { confidences });
+}
+
+/** The calculation's own form of a plan. Throws AnalysisError for a measure the estate does not have. */
+export function questionOf(basis: PlanBasis, choices: PlanChoices): PlanQuestion {
+  return {
+    zones: basis.zones.map(({ number, vines, eligible }) => ({ zone: String(number), vines, eligibleVines: eligible })),
+    measures: choices.measures.map((choice) => measureOf(basis, choices, choice)),
+    question: choices.question,
+    method: choices.allocation,
+    effort: { secondsPerVine: choices.secondsPerVine, moneyPerHour: choices.moneyPerHour ?? basis.settings.costPerHour },
+    minimum: minimumOf(basis, choices),
+  };
+}
+
+function measureOf(basis: PlanBasis, { isCautious }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {
+  const known = basis.measures.find(({ code }) => code === choice.code);
+  if (!known) throw new AnalysisError('measure_missing', `There is no measure "${choice.code}" in use in this estate. Choose another or add it.`);
+  return {
+    code: known.code,
+    margin: marginOf(known, choice),
+    confidence: choice.confidence ?? known.confidence,
+    spreads: known.spreads.map(({ kind, value, cautious }) => ({ kind, value: isCautious ? cautious : value })),
+    expectedMeans: known.spreads.map(({ expectedMean }) => expectedMean),
+    secondsPerSample: known.secondsPerSample,
+  };
+}
+
+/** The margin in force: chosen for the plan, else the measure's own. */
+function marginOf(known: BasisMeasure, { margin, marginKind }: PlanChoices['measures'][number]): PlanMeasure['margin'] {
+  return { kind: marginKind ?? known.marginKind, value: margin ?? known.margin };
+}
+
+function minimumOf(basis: PlanBasis, { minimum }: PlanChoices): number {
+  return minimum ?? basis.settings.floorVines;
+}
+
+function limitsOf(basis: PlanBasis, { limits, people }: PlanChoices): PracticalLimits {
+  return { visitsPerZone: limits.visitsPerZone ?? basis.settings.impracticalSamples, hours: limits.hours === undefined ? basis.settings.dayHours * people : limits.hours };
+}

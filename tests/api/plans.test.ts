@@ -1,0 +1,279 @@
+import { randomUUID } from 'node:crypto';
+import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import type { PlanBasis, PlanView } from '../../shared/contracts/plans.ts';
+import { planChoices } from '../../shared/contracts/plans.ts';
+import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
+import { answerPlan } from '../../shared/sampling/plan.ts';
+import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { Block } from '../../server/models/Block.ts';
+import { MailMessage } from '../../server/models/MailMessage.ts';
+import { MeasureRecord } from '../../server/models/MeasureRecord.ts';
+import { Plan } from '../../server/models/Plan.ts';
+import { Quota } from '../../server/models/Quota.ts';
+import { Reading } from '../../server/models/Reading.ts';
+import { Season } from '../../server/models/Season.ts';
+import { Vine } from '../../server/models/Vine.ts';
+import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+
+let app: TestApp;
+let estate: Awaited<ReturnType<TestApp['addEstate']>>;
+let place: StripBlock;
+let manager: Agent;
+let crew: { id: string; email: string };
+let otherCrew: { id: string; email: string };
+
+beforeAll(async () => {
+  app = await startTestApp();
+  openComputePool(1);
+  estate = await app.addEstate('Plan test');
+  place = await makeStripBlock(estate);
+  manager = await app.as((await app.addPerson(estate.estateId, 'manager')).email);
+  crew = await app.addPerson(estate.estateId, 'crew', 'Nia Holt');
+  otherCrew = await app.addPerson(estate.estateId, 'crew', 'Teo Marsh');
+});
+afterAll(async () => {
+  await closeComputePool();
+  await app.close();
+});
+beforeEach(async () => {
+  await app.knex.raw('truncate readings, plans, rounds, entry_restrictions, vines, mail_messages cascade');
+});
+
+const base = () => `/api/estates/${estate.estateId}`;
+const clusters = { code: 'clusterCount', marginKind: 'relative', margin: 0.1, confidence: 0.95 };
+const plan = async (over: Record<string, unknown> = {}): Promise<PlanView> => {
+  const answer = await manager.post(`${base()}/zonings/${place.zoningId}/plans`, { name: 'Lag-phase count', measures: [clusters], seed: 7, ...over });
+  expect(answer.status, answer.text).toBe(201);
+  return answer.body as PlanView;
+};
+
+describe('the basis of a plan', () => {
+  it('falls back on the trade default and says so', async () => {
+    const basis = (await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis`)).body as PlanBasis;
+    const measure = basis.measures.find(({ code }) => code === 'clusterCount')!;
+    expect(measure.spreads).toHaveLength(3);
+    expect(measure.spreads[0]).toMatchObject({ kind: 'cv', value: 0.25, source: 'trade', n: 0, isMeanAssumed: true });
+    // 48 rows of 83 vines: 16 rows a strip.
+    expect(basis.zones.map(({ vines }) => vines)).toEqual([1328, 1328, 1328]);
+    expect(basis.zones[0]!.eligible).toBeLessThan(1328);
+  });
+
+  it('takes earlier readings by the vine, whatever zone it was in then', async () => {
+    const season = await Season.query().where({ estateId: estate.estateId }).first().throwIfNotFound();
+    // Standard deviation of 20 22 24 26 28 30 is 3.741657 (n - 1), mean 25: 14.97 percent.
+    await Reading.query().insert([20, 22, 24, 26, 28, 30].map((value, i) => ({
+      id: randomUUID(), estateId: estate.estateId, seasonId: season.id, blockId: place.blockId, rowId: place.rows[3 + i]!.id, ordinal: 10, measureCode: 'clusterCount', value, unit: 'clusters', takenAt: new Date(`${season.startsOn}T09:00:00Z`), source: 'field' as const, flags: [],
+    })));
+    const basis = (await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis`)).body as PlanBasis;
+    const [first, second] = basis.measures.find(({ code }) => code === 'clusterCount')!.spreads;
+    expect(first).toMatchObject({ source: 'zone', n: 6, outliers: 0, expectedMean: 25, isMeanAssumed: false });
+    expect(first!.withOutliers).toBeCloseTo(0.149666, 5);
+    expect(second!.source).toBe('block');
+  });
+
+  it('refuses zones that were drawn on an outline since changed', async () => {
+    const moved = await makeStripBlock(estate, { name: 'Moved', x: 400 });
+    await Block.query().findById(moved.blockId).patch({ cellSizeM: 3 });
+    const answer = await manager.get(`${base()}/zonings/${moved.zoningId}/plan-basis`);
+    expect(answer.status).toBe(422);
+    expect(answer.body.code).toBe('zoningOutOfDate');
+  });
+});
+
+describe('a plan', () => {
+  it('counts as the tables do and gives the answer that the browser computes', async () => {
+    const made = await plan();
+    // 25 % spread, 10 % margin, 95 %: 27 without the population, 26 of 1328 (t search with finite population correction, Cochran 1977 §4.6; checked by hand: t(25) 2.0595 · 25/√26 · √(1 − 26/1328) = 9.998).
+    expect(made.draw.map(({ drawn }) => drawn)).toEqual([26, 26, 26]);
+    const basis = (await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis`)).body as PlanBasis;
+    const inBrowser = answerPlan(basis, planChoices.parse({ measures: [clusters] }));
+    expect(inBrowser.counts.zones.map(({ visits }) => visits)).toEqual([26, 26, 26]);
+    expect(inBrowser.counts.drivers).toEqual(['clusterCount']);
+    const stored = (await Plan.query().findById(made.id))!.result as { counts: unknown };
+    expect(stored.counts).toEqual(JSON.parse(JSON.stringify(inBrowser.counts)));
+    expect(await Quota.query().where({ planId: made.id }).sum('samples as n').first()).toMatchObject({ n: 78 });
+  });
+
+  it('draws the same vines from the same seed, away from edges, each with a reserve of its zone', async () => {
+    const [one, two] = [await plan(), await plan({ name: 'Again' })];
+    const vines = (made: PlanView) => made.targets.map(({ rowId, ordinal }) => `${rowId} ${ordinal}`);
+    expect(vines(one)).toEqual(vines(two));
+    expect(vines(await plan({ name: 'Other seed', seed: 8 }))).not.toEqual(vines(one));
+    expect(one.targets.every(({ ordinal }) => ordinal > 2 && ordinal <= 81)).toBe(true);
+    expect(one.targets.some(({ rowId }) => rowId === place.rows[0]!.id || rowId === place.rows.at(-1)!.id)).toBe(false);
+    expect(one.targets.every(({ reserve }) => reserve !== null)).toBe(true);
+    expect(one.targets.map(({ walkOrder }) => walkOrder)).toEqual(Array.from({ length: 78 }, (_, i) => i + 1));
+    expect(one.walk!.lengthM).toBeGreaterThan(500);
+  });
+
+  it('never draws a missing, replanted or off-type vine', async () => {
+    const marked = place.rows.slice(0, 16).flatMap((row) => Array.from({ length: 83 }, (_, i) => i + 1).filter((ordinal) => ordinal % 4 !== 0).map((ordinal) => ({ estateId: estate.estateId, blockId: place.blockId, rowId: row.id, ordinal, state: 'missing' as const, proposed: false, notedAt: new Date() })));
+    await Vine.query().insert(marked);
+    const made = await plan();
+    expect(made.targets.filter(({ zone }) => zone === 1).every(({ ordinal }) => ordinal % 4 === 0)).toBe(true);
+    expect(made.basis.zones[0]!.vines).toBe(16 * 20);
+  });
+
+  it('names the measure that drives it and spares the others', async () => {
+    const made = await plan({ measures: [clusters, { code: 'brix', margin: 1 }] });
+    const brix = made.targets.filter(({ measures }) => measures.includes('brix'));
+    expect(brix.length).toBeLessThan(made.targets.length);
+    expect(made.targets.every(({ measures }) => measures.includes('clusterCount'))).toBe(true);
+    // Taken at the first vines of the draw, so that they too are a random sample.
+    expect(Math.max(...brix.map(({ drawOrder }) => drawOrder))).toBe(brix.length / 3);
+  });
+
+  it('spreads a pilot of twenty over the zones with at least five in each', async () => {
+    const made = await plan({ isPilot: true });
+    expect(made.draw.map(({ drawn }) => drawn).reduce((a, b) => a + b)).toBe(20);
+    expect(Math.min(...made.draw.map(({ drawn }) => drawn))).toBeGreaterThanOrEqual(5);
+  });
+
+  it('locks: then it is not changed, and other vines need a reason and leave the old draw on record', async () => {
+    const made = await plan();
+    expect((await manager.patch(`${base()}/plans/${made.id}`, { choices: { measures: [{ ...clusters, margin: 0.2 }] } })).body.draw[0].drawn).toBeLessThan(26);
+    expect((await manager.post(`${base()}/plans/${made.id}/lock`)).body.state).toBe('locked');
+    expect((await manager.patch(`${base()}/plans/${made.id}`, { name: 'Other' })).status).toBe(409);
+    expect((await manager.post(`${base()}/plans/${made.id}/redraw`, { reason: ' ' })).status).toBe(422);
+    const again = (await manager.post(`${base()}/plans/${made.id}/redraw`, { reason: 'Hail took the north end', seed: 9 })).body as PlanView;
+    expect(again.oldDraws).toMatchObject([{ reason: 'Hail took the north end', seed: 7 }]);
+    expect(again.seed).toBe(9);
+    expect(await AuditEntry.query().where({ action: 'plans.redraw', subjectId: made.id }).resultSize()).toBe(1);
+  });
+
+  it('refuses measures that are not in use, doubled or unknown, and bad margins', async () => {
+    const tries = [{ measures: [] }, { measures: [clusters, clusters] }, { measures: [{ code: 'colour' }] }, { measures: [{ ...clusters, margin: 0 }] }, { measures: [{ ...clusters, confidence: 0.97 }] }];
+    for (const body of tries) expect((await manager.post(`${base()}/zonings/${place.zoningId}/plans`, { name: 'Bad', ...body })).status).toBe(422);
+    expect(await Plan.query().resultSize()).toBe(0);
+  });
+
+  it('leaves as a table that a spreadsheet cannot run and as waypoints', async () => {
+    await MeasureRecord.query().where({ estateId: estate.estateId, code: 'clusterCount' }).patch({ inUse: true });
+    const made = await plan({ name: '=Plan & co' });
+    const csv = await manager.get(`${base()}/plans/${made.id}/export?format=csv`);
+    expect(csv.headers['content-type']).toMatch(/text\/csv/);
+    expect(csv.text.trim().split('\r\n')).toHaveLength(79);
+    const gpx = await manager.get(`${base()}/plans/${made.id}/export?format=gpx`).buffer(true).parse((response, done) => {
+      let text = '';
+      response.on('data', (part: Buffer) => (text += part.toString('utf8')));
+      response.on('end', () => done(null, text));
+    });
+    expect((gpx.body as string).match(/<wpt /g)).toHaveLength(78);
+    expect(gpx.body).toContain('=Plan &amp; co');
+    expect((await manager.get(`${base()}/plans/${made.id}/export?format=docx`)).status).toBe(422);
+  });
+});
+
+describe('a round', () => {
+  const send = async (people: string[], over: Record<string, unknown> = {}) => {
+    const made = await plan({ measures: [{ ...clusters, margin: 0.2 }], ...over });
+    await manager.post(`${base()}/plans/${made.id}/lock`);
+    const answer = await manager.post(`${base()}/plans/${made.id}/rounds`, { onDate: '2026-07-09', people, gate: 'Kiln gate', notes: 'Bring the red tape' });
+    expect(answer.status, answer.text).toBe(201);
+    return { plan: made, roundId: answer.body.id as string };
+  };
+  const fieldOf = async (agent: Agent, roundId: string) => (await agent.get(`${base()}/rounds/${roundId}`)).body as FieldRound;
+
+  it('is not sent from a draft, nor to people who may not record', async () => {
+    const made = await plan();
+    const body = { onDate: '2026-07-09', people: [crew.id] };
+    expect((await manager.post(`${base()}/plans/${made.id}/rounds`, body)).body.code).toBe('notLocked');
+    await manager.post(`${base()}/plans/${made.id}/lock`);
+    const guest = await app.addPerson(estate.estateId, 'guest');
+    expect((await manager.post(`${base()}/plans/${made.id}/rounds`, { ...body, people: [guest.id] })).body.code).toBe('notAWalker');
+    const stranger = await app.addPerson((await app.addEstate()).estateId, 'crew');
+    expect((await manager.post(`${base()}/plans/${made.id}/rounds`, { ...body, people: [stranger.id] })).body.code).toBe('notAWalker');
+  });
+
+  it('shares the walk with loads within 15 percent, each vine to one person, and writes to both', async () => {
+    const { plan: made, roundId } = await send([crew.id, otherCrew.id]);
+    const [nia, teo] = [await fieldOf(await app.as(crew.email), roundId), await fieldOf(await app.as(otherCrew.email), roundId)];
+    const ids = [...nia.stops, ...teo.stops].map(({ targetId }) => targetId);
+    expect([...ids].sort()).toEqual(made.targets.map(({ id }) => id).sort());
+    const { items } = (await manager.get(`${base()}/rounds`)).body as { items: RoundSummary[] };
+    const loads = items[0]!.people.map(({ seconds }) => seconds);
+    expect(Math.max(...loads) / Math.min(...loads)).toBeLessThanOrEqual(1.15);
+    const mails = await MailMessage.query().where({ kind: 'assignment' });
+    expect(mails).toHaveLength(2);
+    expect(mails[0]!.bodyText).toContain(`/e/${estate.estateId}/field/rounds/${roundId}`);
+    expect(mails[0]!.bodyText).toContain('Kiln gate');
+  });
+
+  it('holds all that a phone needs for the day', async () => {
+    const { roundId } = await send([crew.id]);
+    const field = await fieldOf(await app.as(crew.email), roundId);
+    expect(field).toMatchObject({ blockName: 'Zoned plot', gate: 'Kiln gate', state: 'sent', startPostColour: 'white', endPostColour: 'red' });
+    expect(field.rows).toHaveLength(48);
+    expect(field.rows.every(({ runs, vineCount }) => runs.reduce((sum, { from, to }) => sum + to - from + 1, 0) === vineCount)).toBe(true);
+    expect(field.stops.map(({ number }) => number)).toEqual(field.stops.map((_, i) => i + 1));
+    expect(field.stops.every(({ ahead, rowLabel, reserve }) => ahead >= 0 && rowLabel !== '' && reserve !== null)).toBe(true);
+    expect(field.measures[0]).toMatchObject({ code: 'clusterCount', margin: 0.2, marginKind: 'relative', minimum: 0, maximum: 150 });
+    expect(field.zones.reduce((sum, { targets }) => sum + targets, 0)).toBe(field.stops.length);
+  });
+
+  it('is hidden from crew it was not sent to', async () => {
+    const { roundId } = await send([crew.id]);
+    const stranger = await app.as(otherCrew.email);
+    expect((await stranger.get(`${base()}/rounds`)).body.items).toEqual([]);
+    expect((await stranger.get(`${base()}/rounds/${roundId}`)).status).toBe(404);
+    expect((await stranger.patch(`${base()}/rounds/${roundId}`, { state: 'open' })).status).toBe(404);
+    expect((await stranger.post(`${base()}/rounds/${roundId}/acknowledge`)).status).toBe(404);
+  });
+
+  it('takes the readings of its crew, who see their own values and which vines are done', async () => {
+    const { roundId } = await send([crew.id, otherCrew.id]);
+    const [nia, teo] = [await app.as(crew.email), await app.as(otherCrew.email)];
+    const stop = (await fieldOf(nia, roundId)).stops[0]!;
+    const reading = { id: randomUUID(), blockId: place.blockId, roundId, targetId: stop.targetId, rowId: stop.rowId, ordinal: stop.ordinal, measureCode: 'clusterCount', value: 31, unit: 'clusters', takenAt: '2026-07-09T07:00:00Z' };
+    expect((await nia.post(`${base()}/readings`, { readings: [reading] })).body.outcomes).toMatchObject([{ state: 'received' }]);
+    const after = await fieldOf(nia, roundId);
+    expect(after.received).toMatchObject([{ value: 31, targetId: stop.targetId, zone: stop.zone }]);
+    const seenByTeo = await fieldOf(teo, roundId);
+    expect(seenByTeo.received).toEqual([]);
+    expect(seenByTeo.doneTargetIds).toEqual([stop.targetId]);
+    expect((await manager.get(`${base()}/rounds`)).body.items[0]).toMatchObject({ done: 1 });
+  });
+
+  it('is not opened while an entry restriction is in force, the longest of several counting', async () => {
+    const { roundId } = await send([crew.id]);
+    const agent = await app.as(crew.email);
+    const restriction = (over: object) => manager.post(`${base()}/restrictions`, { blockId: place.blockId, startsAt: '2026-07-08T18:00:00Z', endsAt: '2026-07-09T18:00:00Z', product: 'Copper', labelInterval: '24 h', ...over });
+    await restriction({});
+    await restriction({ endsAt: '2026-07-10T18:00:00Z', product: 'Sulphur', labelInterval: '48 h' });
+    const refused = await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open', startedAt: '2026-07-09T07:00:00Z' });
+    expect(refused.status).toBe(409);
+    expect(refused.body).toMatchObject({ code: 'entryRestricted', until: '2026-07-10T18:00:00.000Z' });
+    expect(refused.body.detail).toMatch(/Sulphur.*label.*law/s);
+    expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open', startedAt: '2026-07-11T07:00:00Z' })).status).toBe(204);
+  });
+
+  it('is opened beside restricted rows that it does not touch', async () => {
+    const { roundId, plan: made } = await send([crew.id]);
+    const agent = await app.as(crew.email);
+    const walked = new Set(made.targets.map(({ rowId }) => rowId));
+    const free = place.rows.find(({ id }) => !walked.has(id))!;
+    const visit = { state: 'open', startedAt: '2026-07-09T07:00:00Z' };
+    await manager.post(`${base()}/restrictions`, { blockId: place.blockId, rowIds: [free.id], startsAt: '2026-07-08T18:00:00Z', endsAt: '2026-07-09T18:00:00Z', product: 'Copper', labelInterval: '24 h' });
+    expect((await agent.patch(`${base()}/rounds/${roundId}`, visit)).status).toBe(204);
+  });
+
+  it('may be opened and closed again and again, and called off by its sender only', async () => {
+    const { roundId, plan: made } = await send([crew.id]);
+    const agent = await app.as(crew.email);
+    for (let i = 0; i < 2; i++) expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open' })).status).toBe(204);
+    expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'called off' })).status).toBe(403);
+    expect((await manager.post(`${base()}/plans/${made.id}/redraw`, { reason: 'Nicer vines' })).body.code).toBe('roundsOut');
+    expect((await manager.patch(`${base()}/rounds/${roundId}`, { state: 'called off' })).status).toBe(204);
+    expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open' })).body.code).toBe('calledOff');
+  });
+
+  it('is noted as seen once', async () => {
+    const { roundId } = await send([crew.id]);
+    const agent = await app.as(crew.email);
+    for (let i = 0; i < 2; i++) expect((await agent.post(`${base()}/rounds/${roundId}/acknowledge`)).status).toBe(204);
+    expect((await manager.get(`${base()}/rounds`)).body.items[0].people[0].acknowledgedAt).not.toBeNull();
+    expect(await AuditEntry.query().where({ action: 'rounds.acknowledge', subjectId: roundId }).resultSize()).toBe(1);
+  });
+});

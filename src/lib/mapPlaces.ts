@@ -45,7 +45,7 @@ export function visualCentre(area: Area): [number, number] {
 
 /** Where a block's name stands: above the outline, along the rows; `turnDeg` clockwise from level, upright when the rows are steeper than 46°. */
 export function namePlace(area: Area, rowBearingDeg: number | null): { lonLat: [number, number]; turnDeg: number } {
-  const points = ringsOf(area).flat();
+  const points = ringsOf(area).flatMap(alongEdges);
   const [west, south, east, north] = extentOf([area])!;
   const squeeze = Math.cos(((south + north) / 2) * (Math.PI / 180));
   const [midLon, midLat] = [(west + east) / 2, (south + north) / 2];
@@ -63,6 +63,15 @@ export function namePlace(area: Area, rowBearingDeg: number | null): { lonLat: [
   const height = Math.max(...(near.length > 0 ? near : local).map((point) => point.x * up.x + point.y * up.y));
   const place = { x: along.x * middle + up.x * height, y: along.y * middle + up.y * height };
   return { lonLat: [midLon + place.x / squeeze, midLat + place.y], turnDeg };
+}
+
+/** Corners and places between them: a long straight edge has no corner where its name stands. */
+function alongEdges(ring: Position[]): Position[] {
+  const parts = 12;
+  return ring.slice(1).flatMap((to, index) => {
+    const from = ring[index]!;
+    return Array.from({ length: parts }, (_, part) => [from[0]! + ((to[0]! - from[0]!) * part) / parts, from[1]! + ((to[1]! - from[1]!) * part) / parts]);
+  });
 }
 
 function ringArea(ring: Position[]): number {

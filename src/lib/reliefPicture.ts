@@ -34,6 +34,9 @@ export function reliefPixels({ cells, columns, rows, cellSizeM }: HeightGrid, { 
     const height = cells[Math.min(rows - 1, Math.max(0, row)) * columns + Math.min(columns - 1, Math.max(0, column))]!;
     return Number.isNaN(height) ? own : height;
   };
+  const edgeDistance = (column: number, row: number) => Math.min(column, row, columns - 1 - column, rows - 1 - row);
+  // Where heights end, the shade runs out instead of ending in a line.
+  const fadeCells = Math.max(1, Math.min(columns, rows) * 0.08);
   for (let row = 0; row < rows; row++) {
     for (let column = 0; column < columns; column++) {
       const own = cells[row * columns + column]!;
@@ -50,7 +53,7 @@ export function reliefPixels({ cells, columns, rows, cellSizeM }: HeightGrid, { 
       pixels[pixel] = colour[0];
       pixels[pixel + 1] = colour[1];
       pixels[pixel + 2] = colour[2];
-      pixels[pixel + 3] = 255 * Math.min(strongest, Math.abs(difference) * 2.4);
+      pixels[pixel + 3] = 255 * Math.min(strongest, Math.abs(difference) * 2.4) * Math.min(1, edgeDistance(column, row) / fadeCells);
     }
   }
   return pixels;

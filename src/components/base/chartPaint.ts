@@ -93,7 +93,7 @@ export function chartOptions({ x, y, ink }: ChartFrame): ChartOptions<'line'> {
     layout: { padding: { top: 8, right: 8 } },
     plugins: { legend: { display: false }, tooltip: { enabled: false } },
     scales: {
-      x: { type: 'linear', min: x.low, max: x.high, grid: { display: false, drawTicks: true, tickColor: ink.ink }, border: { color: ink.ink, width: 1.5 }, afterBuildTicks: (axis) => (axis.ticks = x.ticks.map((value) => ({ value }))), ticks: { color: ink.muted, font, callback: (value) => x.text(Number(value)), maxRotation: 0, autoSkip: true } },
+      x: { type: 'linear', min: x.low, max: x.high, grid: { drawOnChartArea: false, drawTicks: true, tickColor: ink.ink, tickLength: 5 }, border: { color: ink.ink, width: 1.5 }, afterBuildTicks: (axis) => (axis.ticks = x.ticks.map((value) => ({ value }))), ticks: { color: ink.muted, font, callback: (value) => x.text(Number(value)), maxRotation: 0, autoSkip: true } },
       y: { type: 'linear', min: y.low, max: y.high, grid: { color: ink.rule, lineWidth: 1, drawTicks: false }, border: { display: false }, afterBuildTicks: (axis) => (axis.ticks = y.ticks.map((value) => ({ value }))), ticks: { color: ink.muted, font, padding: 6, callback: (value) => y.text(Number(value)) } },
     },
   };
@@ -115,10 +115,11 @@ export function marksPlugin(marks: () => ChartMarks): Plugin<'line'> {
     beforeDatasetsDraw: (chart) => {
       const { target, drops, ink } = marks();
       if (target !== null) drawTarget(chart, target, marks());
-      for (const drop of drops) drawDrop(chart, drop, ink);
+      for (const drop of drops) drawDropLine(chart, drop, ink);
     },
     afterDatasetsDraw: (chart) => {
-      const { series, rainAt, ink } = marks();
+      const { series, rainAt, drops, ink } = marks();
+      for (const drop of drops) drawDropWords(chart, drop, ink);
       for (const one of series) drawErrorBars(chart, one, ink);
       for (const one of series) drawEndWord(chart, one, ink);
       for (const at of rainAt) drawRain(chart, at, ink);
@@ -139,31 +140,48 @@ function stroke(pen: Pen, { colour, width, dash = [] }: { colour: string; width:
   pen.restore();
 }
 
-function write(pen: Pen, text: string, { x, y, colour, bold = false, align = 'left' }: { x: number; y: number; colour: string; bold?: boolean; align?: CanvasTextAlign }): void {
+function write(pen: Pen, text: string, { x, y, colour, bold = false, align = 'left', halo }: { x: number; y: number; colour: string; bold?: boolean; align?: CanvasTextAlign; halo?: string }): void {
   pen.save();
   pen.font = `${bold ? 700 : 400} 12px ${font.family}`;
   pen.fillStyle = colour;
   pen.textAlign = align;
+  if (halo !== undefined) {
+    pen.strokeStyle = halo;
+    pen.lineWidth = 4;
+    pen.lineJoin = 'round';
+    pen.strokeText(text, x, y);
+  }
   pen.fillText(text, x, y);
   pen.restore();
 }
 
 function drawTarget(chart: Chart<'line'>, target: number, { ink, targetWord }: ChartMarks): void {
   const y = chart.scales.y!.getPixelForValue(target);
-  const { left, right } = chart.chartArea;
+  const { left, right, top, bottom } = chart.chartArea;
+  if (y < top || y > bottom) return;
   stroke(chart.ctx, { colour: ink.lees, width: 1.5, dash: [5, 3] }, (pen) => (pen.moveTo(left, y), pen.lineTo(right, y)));
   if (targetWord !== '') write(chart.ctx, targetWord, { x: right, y: y - 5, colour: ink.lees, bold: true, align: 'right' });
 }
 
-function drawDrop(chart: Chart<'line'>, drop: ChartDrop, ink: ChartInk): void {
-  const [x, y] = [chart.scales.x!.getPixelForValue(drop.x), chart.scales.y!.getPixelForValue(drop.y)];
+function placeOf(chart: Chart<'line'>, drop: ChartDrop): [number, number] {
+  return [chart.scales.x!.getPixelForValue(drop.x), chart.scales.y!.getPixelForValue(drop.y)];
+}
+
+function drawDropLine(chart: Chart<'line'>, drop: ChartDrop, ink: ChartInk): void {
+  const [x, y] = placeOf(chart, drop);
   const { bottom } = chart.chartArea;
   stroke(chart.ctx, { colour: drop.chosen ? ink.slate : ink.muted, width: drop.chosen ? 2.5 : 1 }, (pen) => (pen.moveTo(x, y), pen.lineTo(x, bottom)));
+}
+
+/** Over the curves, on a halo of the ground, so that no dash runs through a figure. */
+function drawDropWords(chart: Chart<'line'>, drop: ChartDrop, ink: ChartInk): void {
+  const [x, y] = placeOf(chart, drop);
+  const { bottom } = chart.chartArea;
   chart.ctx.fillStyle = drop.chosen ? ink.slate : ink.ground;
   chart.ctx.fillRect(x - 4, y - 4, 8, 8);
   stroke(chart.ctx, { colour: ink.ink, width: 1.5 }, (pen) => pen.rect(x - 4, y - 4, 8, 8));
-  write(chart.ctx, drop.text, { x: x + 4, y: bottom - 6, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen });
-  if (drop.word) write(chart.ctx, drop.word, { x: x + 3, y: y - 10, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen });
+  write(chart.ctx, drop.text, { x: x + 5, y: bottom - 6, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
+  if (drop.word) write(chart.ctx, drop.word, { x: x + 3, y: y - 10, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
 }
 
 function drawErrorBars(chart: Chart<'line'>, series: ChartSeries, ink: ChartInk): void {

@@ -8,6 +8,8 @@ export interface TwinLink {
   readonly mapY: ShallowRef<number | null>;
   /** Grows whenever something moved without its value changing: scrolling, sorting, a resize. */
   readonly moved: ShallowRef<number>;
+  /** False while the map lies below: there is no leader then. */
+  readonly isBeside: ShallowRef<boolean>;
   /** `m` was pressed: to the map, or back to the ledger. */
   readonly jump: ShallowRef<'map' | 'ledger' | null>;
 }
@@ -15,5 +17,5 @@ export interface TwinLink {
 export const twinLinkKey: InjectionKey<TwinLink> = Symbol('twinLink');
 
 export function createTwinLink(): TwinLink {
-  return { line: shallowRef(null), mapY: shallowRef(null), moved: shallowRef(0), jump: shallowRef(null) };
+  return { line: shallowRef(null), mapY: shallowRef(null), moved: shallowRef(0), isBeside: shallowRef(true), jump: shallowRef(null) };
 }

@@ -44,8 +44,9 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'block-halo', type: 'line', source: 'blocks', layout: { 'line-join': 'round' }, paint: { 'line-color': ink.ground, 'line-width': 7 } },
     { id: 'block-fill', type: 'fill', source: 'blocks', paint: { 'fill-color': ink.ground, 'fill-opacity': 0.55 } },
     { id: 'zone-fill', type: 'fill', source: 'zones', paint: { 'fill-pattern': ['get', 'pattern'], 'fill-antialias': false } },
-    { id: 'rows-third', type: 'line', source: 'rows', minzoom: 16, maxzoom: 18, filter: ['get', 'third'], paint: { 'line-color': ink.zoneLine, 'line-width': 0.7, 'line-opacity': 0.3 } },
-    { id: 'rows-all', type: 'line', source: 'rows', minzoom: 18, paint: { 'line-color': ink.zoneLine, 'line-width': 0.9, 'line-opacity': 0.35 } },
+    // A light line in a dark groove holds on the darkest and the lightest zone alike.
+    ...rowLines('rows-third', { minzoom: 16, maxzoom: 18, filter: ['get', 'third'] }),
+    ...rowLines('rows-all', { minzoom: 18 }),
     { id: 'zone-edge', type: 'line', source: 'zones', layout: { 'line-join': 'miter' }, paint: { 'line-color': ink.zoneLine, 'line-width': ['interpolate', ['linear'], ['zoom'], 14, 1.2, 17, 2] } },
     { id: 'zone-chosen', type: 'line', source: 'zones', layout: { 'line-join': 'miter' }, paint: { 'line-color': ink.zoneLine, 'line-width': ['case', chosen, 3.5, 0] } },
     { id: 'restriction-fill', type: 'fill', source: 'blocks', filter: ['get', 'restricted'], paint: { 'fill-pattern': 'restriction', 'fill-antialias': false } },
@@ -59,6 +60,13 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'pills', type: 'symbol', source: 'pills', minzoom: 13.5, layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-ignore-placement': true } },
     { id: 'points', type: 'symbol', source: 'points', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'text-field': ['get', 'text'], 'text-font': label, 'text-size': 11, 'text-anchor': 'left', 'text-offset': [0.9, 0], 'text-optional': true }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.ground, 'text-halo-width': 2 } },
     { id: 'names', type: 'symbol', source: 'names', minzoom: 12, layout: { 'text-field': ['get', 'name'], 'text-font': label, 'text-size': 13, 'text-anchor': 'bottom', 'text-offset': [0, -0.45], 'text-rotate': ['get', 'turn'], 'text-rotation-alignment': 'map', 'text-allow-overlap': false, 'text-padding': 4 }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.land, 'text-halo-width': 3.2 } },
+  ];
+}
+
+function rowLines(id: string, range: { minzoom: number; maxzoom?: number; filter?: ExpressionSpecification }): LayerSpecification[] {
+  return [
+    { id: `${id}-groove`, type: 'line', source: 'rows', ...range, paint: { 'line-color': '#1C2B33', 'line-width': 1.6, 'line-opacity': 0.16 } },
+    { id, type: 'line', source: 'rows', ...range, paint: { 'line-color': '#F6F4EE', 'line-width': 0.7, 'line-opacity': 0.4 } },
   ];
 }
 

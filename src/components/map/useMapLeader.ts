@@ -18,7 +18,7 @@ export function useMapLeader(map: ShallowRef<MlMap | null>, shape: () => AreaGeo
   };
   const draw = () => {
     const [ready, area] = [map.value, shape()];
-    if (!ready || !area) return clear();
+    if (!ready || !area || !link.isBeside.value) return clear();
     const end = leaderEnd(ready, area);
     if (end === null) return clear();
     const [from, to] = [ready.unproject([-40, end.y]), ready.unproject([end.x, end.y])];
@@ -27,7 +27,7 @@ export function useMapLeader(map: ShallowRef<MlMap | null>, shape: () => AreaGeo
     link.moved.value++;
   };
 
-  watch([map, shape], ([ready]) => {
+  watch([map, shape, link.isBeside], ([ready]) => {
     if (ready && watched !== ready) {
       ready.on('movestart', clear);
       ready.on('moveend', draw);

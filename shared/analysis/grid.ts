@@ -132,11 +132,20 @@ export function cellCentre(grid: GridFrame, cell: number): XY {
 
 /** Indexes of the cells inside the block, ascending. */
 export function insideCells(grid: Grid): Int32Array {
-  const count = grid.inside.reduce((sum, inside) => sum + inside, 0);
-  const cells = new Int32Array(count);
-  let at = 0;
-  for (let cell = 0; cell < grid.inside.length; cell++) if (grid.inside[cell] === 1) cells[at++] = cell;
-  return cells;
+  const cells = new Int32Array(grid.inside.length);
+  let count = 0;
+  for (let cell = 0; cell < grid.inside.length; cell++) if (grid.inside[cell] === 1) cells[count++] = cell;
+  return cells.slice(0, count);
+}
+
+/** The values of a layer inside the block, without the missing ones, in the order of the cells; a new array. */
+export function valuesInside(grid: Grid, cells: Cells): Float32Array {
+  const values = new Float32Array(cells.length);
+  let count = 0;
+  for (let cell = 0; cell < cells.length; cell++) {
+    if (grid.inside[cell] === 1 && !Number.isNaN(cells[cell]!)) values[count++] = cells[cell]!;
+  }
+  return values.slice(0, count);
 }
 
 /** Two 32-bit FNV-1a hashes of the outline in whole centimetres (Fowler, Noll & Vo; constants from memory) after the frame in words. */

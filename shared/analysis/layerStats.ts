@@ -2,8 +2,8 @@
  * What a layer holds inside a block: coverage, mean, spread, quantiles and a histogram.
  * In: cells of a layer. Out: plain numbers for the screen and the database; NaN never leaves (null instead).
  */
-import { assertCellCount, type Cells, type Grid } from './grid.ts';
-import { quantileOfSorted } from './quantile.ts';
+import { assertCellCount, valuesInside, type Cells, type Grid } from './grid.ts';
+import { quantilesOf } from './quantile.ts';
 
 export interface LayerStats {
   /** Cells inside with a value, and cells inside without. */
@@ -35,23 +35,30 @@ export interface LayerStatsOptions {
 /** Statistics over the cells at least half inside; coverage is weighted by the area of every cell inside. */
 export function layerStats(grid: Grid, cells: Cells, { shares = [0.02, 0.05, 0.25, 0.5, 0.75, 0.95, 0.98], bins = 24 }: LayerStatsOptions = {}): LayerStats {
   assertCellCount(grid, cells, 'The layer');
-  const sorted = cells.filter((value, cell) => grid.inside[cell] === 1 && !Number.isNaN(value)).sort();
+  const given = valuesInside(grid, cells);
   const insideCount = grid.inside.reduce((sum, inside) => sum + inside, 0);
-  const n = sorted.length;
+  const n = given.length;
   const base = { n, missing: insideCount - n, coverage: coverageOf(grid, cells) };
   if (n === 0) return { ...base, mean: null, sd: null, min: null, max: null, quantiles: [], histogram: null };
-  const origin = sorted[0]!;
-  const mean = sorted.reduce((sum, value) => sum + (value - origin), 0) / n + origin;
-  const variance = sorted.reduce((sum, value) => sum + (value - mean) ** 2, 0) / n;
-  return {
-    ...base,
-    mean,
-    sd: Math.sqrt(variance),
-    min: origin,
-    max: sorted[n - 1]!,
-    quantiles: shares.map((share) => ({ share, value: quantileOfSorted(sorted, share) })),
-    histogram: histogramOf(sorted, bins),
-  };
+  const { mean, sd, min, max } = momentsOf(given);
+  const ascending = [...shares].sort((a, b) => a - b);
+  const values = quantilesOf(given, ascending);
+  const quantiles = ascending.map((share, at) => ({ share, value: values[at]! }));
+  return { ...base, mean, sd, min, max, quantiles, histogram: histogramOf(given, { from: min, to: max, bins }) };
+}
+
+function momentsOf(values: Float32Array): { mean: number; sd: number; min: number; max: number } {
+  let [min, max, sum, squares] = [Infinity, -Infinity, 0, 0];
+  // Sums around the first value keep the digits of a layer far from 0.
+  const origin = values[0]!;
+  for (const value of values) {
+    min = Math.min(min, value);
+    max = Math.max(max, value);
+    sum += value - origin;
+  }
+  const mean = origin + sum / values.length;
+  for (const value of values) squares += (value - mean) ** 2;
+  return { mean, sd: Math.sqrt(squares / values.length), min, max };
 }
 
 /** Share of the block's area in cells that have a value. */
@@ -65,13 +72,9 @@ export function coverageOf(grid: Grid, cells: Cells): number {
   return total === 0 ? 0 : covered / total;
 }
 
-function histogramOf(sorted: Float32Array, bins: number): Histogram {
-  const from = sorted[0]!;
-  const to = sorted[sorted.length - 1]!;
+function histogramOf(values: Float32Array, { from, to, bins }: { from: number; to: number; bins: number }): Histogram {
   const counts = new Array<number>(bins).fill(0);
-  for (const value of sorted) {
-    const bin = to === from ? 0 : Math.min(bins - 1, Math.floor(((value - from) / (to - from)) * bins));
-    counts[bin]!++;
-  }
+  const perUnit = to === from ? 0 : bins / (to - from);
+  for (const value of values) counts[Math.min(bins - 1, Math.floor((value - from) * perUnit))]!++;
   return { from, to, counts };
 }

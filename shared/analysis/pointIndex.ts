@@ -1,17 +1,17 @@
-/** Points sorted into square buckets, for the nearest few and for all within a distance. Cost to build: linear. */
+/** Points sorted into square buckets, about three in each, to find all within a distance. Cost to build: linear. */
 export class PointIndex {
   private readonly x: Float64Array;
   private readonly y: Float64Array;
   private readonly minX: number;
   private readonly minY: number;
-  private readonly bucketM: number;
+  readonly bucketM: number;
   private readonly cols: number;
   private readonly rows: number;
   /** Points of bucket b are order[start[b]] … order[start[b + 1] − 1], ascending. */
   private readonly start: Int32Array;
   private readonly order: Int32Array;
+  private readonly found: Int32Array;
 
-  /** About three points a bucket. */
   constructor(x: Float64Array, y: Float64Array) {
     this.x = x;
     this.y = y;
@@ -30,32 +30,25 @@ export class PointIndex {
     for (let bucket = 0; bucket < this.cols * this.rows; bucket++) this.start[bucket + 1]! += this.start[bucket]!;
     const next = this.start.slice();
     this.order = new Int32Array(x.length);
+    this.found = new Int32Array(x.length);
     bucketOf.forEach((bucket, point) => (this.order[next[bucket]!++] = point));
   }
 
-  /** Points no farther than a distance, in the order of the buckets. */
+  /** Points no farther than a distance, in the order of the buckets. The array is used again by the next call. */
   within([x, y]: readonly [number, number], radiusM: number): Int32Array {
-    const found: number[] = [];
-    for (let row = this.rowAt(y - radiusM); row <= this.rowAt(y + radiusM); row++) {
-      const from = this.start[row * this.cols + this.colAt(x - radiusM)]!;
-      const to = this.start[row * this.cols + this.colAt(x + radiusM) + 1]!;
-      for (let at = from; at < to; at++) {
+    const [firstRow, lastRow] = [this.rowAt(y - radiusM), this.rowAt(y + radiusM)];
+    const [firstCol, lastCol] = [this.colAt(x - radiusM), this.colAt(x + radiusM)];
+    const reach = radiusM * radiusM;
+    let count = 0;
+    for (let row = firstRow; row <= lastRow; row++) {
+      const to = this.start[row * this.cols + lastCol + 1]!;
+      for (let at = this.start[row * this.cols + firstCol]!; at < to; at++) {
         const point = this.order[at]!;
-        if ((this.x[point]! - x) ** 2 + (this.y[point]! - y) ** 2 <= radiusM * radiusM) found.push(point);
+        const [right, up] = [this.x[point]! - x, this.y[point]! - y];
+        if (right * right + up * up <= reach) this.found[count++] = point;
       }
     }
-    return Int32Array.from(found);
-  }
-
-  /** Distance to the n-th nearest point, infinite when there are fewer. Doubles a circle until it holds n points. */
-  distanceToNth(place: readonly [number, number], n: number): number {
-    if (this.x.length < n) return Infinity;
-    for (let radiusM = this.bucketM * 2; ; radiusM *= 2) {
-      const found = this.within(place, radiusM);
-      if (found.length < n) continue;
-      const squares = Float64Array.from(found, (point) => (this.x[point]! - place[0]) ** 2 + (this.y[point]! - place[1]) ** 2).sort();
-      return Math.sqrt(squares[n - 1]!);
-    }
+    return this.found.subarray(0, count);
   }
 
   private colAt(x: number): number {

@@ -1,10 +1,10 @@
 /**
  * Layers on one scale before clustering. In: cells of a layer. Out: cells with centre 0 and spread 1; NaN outside the
  * block and where missing. Extremes are first drawn in to the 0.5 and 99.5 percentiles, so that one bright roof or bare
- * patch does not set the scale. Cost: one sort of the cells inside.
+ * patch does not set the scale. Cost: linear in the cells.
  */
-import { assertCellCount, type Cells, type Grid } from './grid.ts';
-import { quantileOfSorted } from './quantile.ts';
+import { assertCellCount, valuesInside, type Cells, type Grid } from './grid.ts';
+import { quantilesOf } from './quantile.ts';
 
 export type StandardMethod = 'plain' | 'robust';
 
@@ -26,17 +26,17 @@ export interface StandardisedLayer {
   readonly high: number;
 }
 
-type CentreAndScale = (clippedAscending: Float32Array) => readonly [centre: number, scale: number];
+type CentreAndScale = (clipped: Float32Array) => readonly [centre: number, scale: number];
 
 const METHODS: Record<StandardMethod, CentreAndScale> = { plain: meanAndSd, robust: medianAndMad };
 
 /** Four cells 1, 2, 3, 4 without drawing in give -1.342, -0.447, 0.447, 1.342 (mean 2.5, population sd 1.118). */
 export function standardise(grid: Grid, cells: Cells, { method = 'plain', clip = [0.005, 0.995] }: StandardiseOptions = {}): StandardisedLayer {
   assertCellCount(grid, cells, 'The layer');
-  const sorted = cells.filter((value, cell) => grid.inside[cell] === 1 && !Number.isNaN(value)).sort();
-  const low = quantileOfSorted(sorted, clip[0]);
-  const high = quantileOfSorted(sorted, clip[1]);
-  const [centre, scale] = sorted.length === 0 ? [NaN, 0] : METHODS[method](sorted.map((value) => Math.min(high, Math.max(low, value))));
+  const given = valuesInside(grid, cells);
+  const [low = NaN, high = NaN] = quantilesOf(given, clip);
+  for (let at = 0; at < given.length; at++) given[at] = Math.min(high, Math.max(low, given[at]!));
+  const [centre, scale] = given.length === 0 ? [NaN, 0] : METHODS[method](given);
   const out = new Float32Array(cells.length).fill(NaN);
   for (let cell = 0; cell < cells.length; cell++) {
     const value = cells[cell]!;
@@ -61,7 +61,8 @@ function meanAndSd(values: Float32Array): readonly [number, number] {
 
 /** When more than half of the values are equal the deviation is 0, and the plain standard deviation takes its place. */
 function medianAndMad(values: Float32Array): readonly [number, number] {
-  const median = quantileOfSorted(values, 0.5);
-  const deviation = 1.4826 * quantileOfSorted(values.map((value) => Math.abs(value - median)).sort(), 0.5);
+  const [median = NaN] = quantilesOf(values, [0.5]);
+  const [middle = NaN] = quantilesOf(values.map((value) => Math.abs(value - median)), [0.5]);
+  const deviation = 1.4826 * middle;
   return [median, deviation > 0 ? deviation : meanAndSd(values)[1]];
 }

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { layerStats } from '../../shared/analysis/layerStats.ts';
-import { quantileOfSorted } from '../../shared/analysis/quantile.ts';
+import { quantileOfSorted, quantilesOf } from '../../shared/analysis/quantile.ts';
+import { seededRandom } from '../../shared/analysis/random.ts';
 import { smooth } from '../../shared/analysis/smooth.ts';
 import { standardise } from '../../shared/analysis/standardise.ts';
 import { picture, pictureGrid, rectangleGrid } from './pictures.ts';
@@ -13,8 +14,22 @@ describe('quantiles', () => {
     const sorted = [1, 2, 3, 4, 10];
     const expected = [1.02, 1.4, 3, 7.6, 9.88];
     [0.005, 0.1, 0.5, 0.9, 0.995].forEach((share, at) => expect(quantileOfSorted(sorted, share)).toBeCloseTo(expected[at]!, 12));
+    expect(quantilesOf(Float32Array.from([10, 2, 4, 1, 3]), [0.005, 0.1, 0.5, 0.9, 0.995])).toEqual(expected.map((value) => expect.closeTo(value, 6)));
     expect(quantileOfSorted([7], 0.3)).toBe(7);
     expect(quantileOfSorted([], 0.5)).toBeNaN();
+    expect(quantilesOf(new Float32Array(0), [0.5])).toEqual([NaN]);
+  });
+
+  it('of values in any order are those of the sorted values, and the values stay as they are', () => {
+    const random = seededRandom(12);
+    for (const count of [1, 2, 3, 10, 501]) {
+      const values = Float32Array.from({ length: count }, () => Math.floor(random() * (count / 2 + 1)) - 3);
+      const before = values.slice();
+      const sorted = values.slice().sort();
+      const shares = [0, 0.005, 0.25, 0.25, 0.5, 0.77, 0.995, 1];
+      expect(quantilesOf(values, shares)).toEqual(shares.map((share) => quantileOfSorted(sorted, share)));
+      expect(values).toEqual(before);
+    }
   });
 });
 

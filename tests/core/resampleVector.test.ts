@@ -105,17 +105,15 @@ describe('points by inverse distance', () => {
 });
 
 describe('the index of points', () => {
-  it('finds all within a distance, and the distance to the n-th nearest, also for points on one spot or line', () => {
+  it('finds all within a distance, also for points on one spot or line', () => {
     const random = seededRandom(2);
     for (const spread of [[100, 100], [100, 0], [0, 0]] as const) {
       const x = Float64Array.from({ length: 200 }, () => random() * spread[0]);
       const y = Float64Array.from({ length: 200 }, () => random() * spread[1]);
       const index = new PointIndex(x, y);
       for (const place of [[50, 50], [-20, 3], [99, 0]] as const) {
-        const distances = Array.from(x, (px, point) => Math.hypot(px - place[0], y[point]! - place[1])).sort((a, b) => a - b);
-        expect(index.distanceToNth(place, 12)).toBeCloseTo(distances[11]!, 9);
-        expect(index.within(place, 30).length).toBe(distances.filter((distance) => distance <= 30).length);
-        expect(index.distanceToNth(place, 201)).toBe(Infinity);
+        const near = Array.from(x, (px, point) => ({ point, distance: Math.hypot(px - place[0], y[point]! - place[1]) })).filter(({ distance }) => distance <= 30);
+        expect(Array.from(index.within(place, 30)).sort((a, b) => a - b)).toEqual(near.map(({ point }) => point));
       }
     }
   });

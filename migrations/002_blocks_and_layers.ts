@@ -95,7 +95,6 @@ export async function up(knex: Knex): Promise<void> {
       format text not null default '',
       state text not null check (state in ('reading', 'asks', 'ready', 'done', 'refused')),
       understood jsonb not null default '{}',
-      questions jsonb not null default '[]',
       answers jsonb not null default '{}',
       warnings jsonb not null default '[]',
       problem jsonb,

@@ -15,12 +15,19 @@ import { log } from './log.ts';
 import { blockRoutes } from './routes/blocks.ts';
 import { describedApi } from './routes/openapi.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
+import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
+import { layerRoutes } from './routes/layers.ts';
+import { lotRoutes } from './routes/lots.ts';
+import { measureRoutes } from './routes/measures.ts';
 import { peopleRoutes } from './routes/people.ts';
 import { planRoutes } from './routes/plans.ts';
+import { readingRoutes } from './routes/readings.ts';
 import { recordRoutes } from './routes/records.ts';
+import { restrictionRoutes } from './routes/restrictions.ts';
 import { roundRoutes } from './routes/rounds.ts';
 import { sessionRoutes } from './routes/session.ts';
+import { receiveFiles } from './storage/uploads.ts';
 
 const weekMs = 7 * 86_400_000;
 
@@ -82,7 +89,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
-  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes());
+  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes());
   router.use(planRoutes(), roundRoutes({ publicUrl }));
   return router;
 }

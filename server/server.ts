@@ -10,6 +10,7 @@ import { prepareQueue } from './jobs/queue.ts';
 import { startRunner } from './jobs/runner.ts';
 import { log, setLogLevel } from './log.ts';
 import { makeTransport } from './mail/transport.ts';
+import { openFileStore } from './storage/fileStore.ts';
 import { closeComputePool, openComputePool } from './workers/computePool.ts';
 
 const mailEveryMs = 5000;
@@ -19,6 +20,7 @@ async function main(): Promise<void> {
   setLogLevel(config.logLevel);
   const knex = openDatabase(config.databaseUrl);
   await prepareQueue(config.databaseUrl);
+  await openFileStore(config.dataFolder);
   openComputePool(config.computeThreads);
   const runner = await startRunner(config.databaseUrl);
   const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });

@@ -3,6 +3,7 @@ import { openDatabase } from './db.ts';
 import { prepareQueue } from './jobs/queue.ts';
 import { startRunner } from './jobs/runner.ts';
 import { log, setLogLevel } from './log.ts';
+import { openFileStore } from './storage/fileStore.ts';
 import { closeComputePool, openComputePool } from './workers/computePool.ts';
 
 /** Takes jobs only; any number of these may run beside the web server, on any machine that reaches the database. */
@@ -11,6 +12,7 @@ async function main(): Promise<void> {
   setLogLevel(config.logLevel);
   const knex = openDatabase(config.databaseUrl);
   await prepareQueue(config.databaseUrl);
+  await openFileStore(config.dataFolder);
   openComputePool(config.computeThreads);
   const runner = await startRunner(config.databaseUrl);
   log.info('taking jobs');

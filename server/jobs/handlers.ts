@@ -1,4 +1,5 @@
 import type { Job } from '../models/Job.ts';
+import { placeLayerJob } from '../services/imports/placeLayer.ts';
 import type { JobContext } from './runner.ts';
 
 export interface JobHandler {
@@ -9,4 +10,6 @@ export interface JobHandler {
 }
 
 /** One row a kind of job. */
-export const handlers: Record<string, JobHandler> = {};
+export const handlers: Record<string, JobHandler> = {
+  placeLayer: placeLayerJob,
+};

@@ -1,4 +1,13 @@
+import type { LayerFinding, LayerStatistics } from '../../shared/contracts/layers.ts';
 import { EstateModel } from './BaseModel.ts';
+
+/** Who answers for using a layer with red findings, and why. */
+export interface LayerOverride {
+  personId: string;
+  by: string;
+  reason: string;
+  at: string;
+}
 
 export class BlockLayer extends EstateModel {
   static override tableName = 'block_layers';
@@ -9,8 +18,8 @@ export class BlockLayer extends EstateModel {
   declare gridKey: string;
   declare cells: Buffer;
   declare coverage: number;
-  declare statistics: unknown;
-  declare findings: unknown;
-  declare override: unknown;
+  declare statistics: LayerStatistics;
+  declare findings: LayerFinding[];
+  declare override: LayerOverride | null;
   declare createdAt: Date;
 }

@@ -1,17 +1,28 @@
+import type { ImportAnswers, ImportNote, ImportQuestion, OfferedOutline, UnderstoodFile } from '../../shared/contracts/imports.ts';
 import { EstateModel } from './BaseModel.ts';
+
+/** What is remembered of a file between two answers, so that it need not be read again for each. */
+export interface ImportMemory {
+  file: UnderstoodFile | null;
+  /** Questions that the reader had, answered ones too. */
+  asked: ImportQuestion[];
+  companions: { worldFileText: string | null; projectionFileText: string | null };
+  outlines: OfferedOutline[];
+}
 
 export class FileImport extends EstateModel {
   static override tableName = 'imports';
-  static override jsonAttributes = ['understood', 'questions', 'answers', 'warnings', 'problem'];
+  static override jsonAttributes = ['understood', 'answers', 'warnings', 'problem'];
 
-  declare fileId: string;
+  declare fileId: string | null;
+  declare fileName: string;
   declare format: string;
   declare state: 'reading' | 'asks' | 'ready' | 'done' | 'refused';
-  declare understood: unknown;
-  declare questions: unknown;
-  declare answers: unknown;
-  declare warnings: unknown;
-  declare problem: unknown;
+  declare understood: ImportMemory;
+  declare answers: ImportAnswers;
+  declare warnings: ImportNote[];
+  declare problem: ImportNote | null;
+  declare retiredAt: Date | null;
   declare createdBy: string | null;
   declare createdAt: Date;
   declare finishedAt: Date | null;

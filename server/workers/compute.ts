@@ -1,19 +1,31 @@
 import type { MessagePort } from 'node:worker_threads';
+import { toCarried, type CarriedError } from './carriedError.ts';
 
 type Progress = (stage: string, progress: number) => void;
 type Computation = (input: never, progress: Progress) => unknown;
 
 /** One row a computation that runs in a thread; each loads its code when first asked for. */
 const computations = {
+  describeFile: async () => (await import('../placing/describeFile.ts')).describeFile,
+  outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,
+  placeFile: async () => (await import('../placing/placeFile.ts')).placeFile,
   shareRound: async () => (await import('../ground/shareRound.ts')).shareRound,
 } satisfies Record<string, () => Promise<Computation>>;
 
 export type ComputeName = keyof typeof computations;
 
-/** Entry of a compute thread. */
-export default async function compute(task: { name: ComputeName; input: never; port: MessagePort }): Promise<unknown> {
+export type ComputeAnswer = { value: unknown } | { refused: CarriedError };
+
+/** Entry of a compute thread. What is wrong with the input comes back as an answer; a fault of ours is thrown. */
+export default async function compute(task: { name: ComputeName; input: never; port: MessagePort }): Promise<ComputeAnswer> {
   const load = (computations as Record<string, () => Promise<Computation>>)[task.name];
   if (!load) throw new Error(`No computation "${String(task.name)}"`);
   const work = await load();
-  return work(task.input, (stage, progress) => task.port.postMessage({ stage, progress }));
+  try {
+    return { value: await work(task.input, (stage, progress) => task.port.postMessage({ stage, progress })) };
+  } catch (error) {
+    const carried = toCarried(error);
+    if (carried === null) throw error;
+    return { refused: carried };
+  }
 }

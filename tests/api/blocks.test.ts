@@ -297,6 +297,16 @@ describe('the ledger of blocks', () => {
 });
 
 describe('who may', () => {
+  const byRole = new Map<Role, Agent>();
+  let stranger: Agent;
+  let strangersEstate: string;
+  beforeAll(async () => {
+    for (const role of roles) byRole.set(role, await app.as((await app.addPerson(estate.estateId, role)).email));
+    const other = await app.addEstate();
+    strangersEstate = other.estateId;
+    stranger = await app.as(other.ownerEmail);
+  });
+
   const acts: [string, Permission, Reach, (path: string) => [method: 'get' | 'post' | 'put' | 'patch' | 'delete', path: string, body?: object]][] = [
     ['see blocks', 'estate.see', 'read', () => ['get', '/blocks']],
     ['see a block', 'estate.see', 'read', (block) => ['get', block]],
@@ -311,30 +321,27 @@ describe('who may', () => {
 
   it.each(acts)('%s: every role as the matrix says, and strangers find nothing', async (_what, permission, atLeast, act) => {
     const block = `/blocks/${(await addBlock()).id}`;
-    for (const role of roles as readonly Role[]) {
-      const agent = await app.as((await app.addPerson(estate.estateId, role)).email);
+    for (const [role, agent] of byRole) {
       const [method, path, body] = act(block);
       // Reads go through, writes stop at their body or version: 403 is told apart from every other answer.
       const { status } = method === 'get' ? await agent.get(`${base()}${path}`) : await agent[method](`${base()}${path}`, body);
       expect([role, status === 403]).toEqual([role, !may([role], permission, atLeast)]);
       expect(status).toBeLessThan(500);
     }
-    const stranger = await app.as((await app.addEstate()).ownerEmail);
     const [method, path, body] = act(block);
     expect((await (method === 'get' ? stranger.get(`${base()}${path}`) : stranger[method](`${base()}${path}`, body))).status).toBe(404);
   });
 
   it('a block of another estate is not found in one’s own', async () => {
     const block = await addBlock();
-    const other = await app.addEstate();
-    const agent = await app.as(other.ownerEmail);
-    const foreign = `/api/estates/${other.estateId}/blocks/${block.id}`;
+    const agent = stranger;
+    const foreign = `/api/estates/${strangersEstate}/blocks/${block.id}`;
     expect((await agent.get(foreign)).status).toBe(404);
     expect((await agent.get(`${foreign}/rows`)).status).toBe(404);
     expect((await agent.write('patch', foreign).set('if-match', '"1"').send({ name: 'Mine' })).status).toBe(404);
     expect((await agent.write('delete', foreign).set('if-match', '"1"')).status).toBe(404);
     expect((await agent.write('put', `${foreign}/rows`).set('if-match', '"1"').send({ firstRowLabel: 2 })).status).toBe(404);
     expect((await agent.put(`${foreign}/vines`, { marks: [] })).status).toBe(404);
-    expect((await agent.get(`/api/estates/${other.estateId}/blocks/not-an-id`)).status).toBe(404);
+    expect((await agent.get(`/api/estates/${strangersEstate}/blocks/not-an-id`)).status).toBe(404);
   });
 });

@@ -67,7 +67,7 @@ describe('an outline', () => {
 
   it.each([
     ['too small', 5, 5, 'outlineTooSmall', /25\.0 m²/],
-    ['too large', 3000, 3000, 'outlineTooLarge', /900 ha/],
+    ['too large', 4000, 3000, 'outlineTooLarge', /1200 ha/],
   ])('%s is refused with its area', (_what, width, height, code, words) => {
     const error = catchFrom(() => readOutline({ type: 'Polygon', coordinates: [ring([0, 0], [width, 0], [width, height], [0, height])] })) as { code: string; message: string };
     expect(error.code).toBe(code);

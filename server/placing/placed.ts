@@ -1,0 +1,55 @@
+import type { LayerFinding } from '../../shared/analysis/layerFindings.ts';
+import type { ImportAnswers } from '../../shared/contracts/imports.ts';
+import type { LayerClass, LayerStatistics } from '../../shared/contracts/layers.ts';
+import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
+
+/** Texts of small files that came beside the file. */
+export interface Companions {
+  worldFileText: string | null;
+  projectionFileText: string | null;
+}
+
+/** A file on this machine and everything that was said about it. Crosses into a thread as a structured clone. */
+export interface SourceFile {
+  path: string;
+  fileName: string;
+  estateLonLat: LonLat | null;
+  answers: ImportAnswers;
+  companions: Companions;
+}
+
+export interface TargetBlock {
+  id: string;
+  boundary: MultiPolygonLonLat;
+  cellSizeM: number;
+  rowSpacingM: number;
+}
+
+export interface PlaceInput {
+  source: SourceFile;
+  blocks: TargetBlock[];
+}
+
+/** Cells of one layer on one block, judged. */
+export interface PlacedCells {
+  blockId: string;
+  gridKey: string;
+  cells: Float32Array;
+  coverage: number;
+  statistics: LayerStatistics;
+  findings: LayerFinding[];
+}
+
+/** A layer made of a file: the one that was asked for, or one that follows from it such as slope. */
+export interface PlacedLayer {
+  type: string;
+  /** Type of the layer it is derived from, or null. */
+  derivedFrom: string | null;
+  unit: string;
+  /** What the values are, for the record: an index, a band or a field. */
+  value: string | null;
+  classes: LayerClass[] | null;
+  pixelSizeM: number | null;
+  reference: string | null;
+  blocks: PlacedCells[];
+}

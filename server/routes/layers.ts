@@ -1,0 +1,42 @@
+import { Router } from 'express';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { layerChange, overrideChange } from '../../shared/contracts/layers.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { readCells } from '../services/layers/cells.ts';
+import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
+import { listLayers } from '../services/layers/view.ts';
+
+const cellsQuery = z.object({ block: id });
+
+/** Layers on blocks: what they hold, how far they may be trusted, and their cells. */
+export function layerRoutes(): Router {
+  const router = Router({ mergeParams: true });
+
+  router.get('/blocks/:blockId/layers', allow('estate.see', 'read'), async (request, response) => {
+    const items = await listLayers(accessOf(request), idParam(request, 'blockId'));
+    response.json({ items, total: items.length });
+  });
+
+  router.get('/layers/:layerId/cells', allow('estate.see', 'read'), async (request, response) => {
+    const { bytes, grid } = await readCells(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    response.set({ 'content-type': 'application/octet-stream', 'x-grid': JSON.stringify(grid), 'cache-control': 'private, no-cache' }).send(bytes);
+  });
+
+  router.patch('/layers/:layerId', allow('layers.import'), async (request, response) => {
+    await changeLayer(accessOf(request), idParam(request, 'layerId'), layerChange.parse(request.body));
+    response.status(204).end();
+  });
+
+  router.post('/layers/:layerId/override', allow('layers.override'), async (request, response) => {
+    await overrideLayer(accessOf(request), idParam(request, 'layerId'), overrideChange.parse(request.body), new Date());
+    response.status(204).end();
+  });
+
+  router.delete('/layers/:layerId', allow('layers.import'), async (request, response) => {
+    await retireLayer(accessOf(request), idParam(request, 'layerId'), new Date());
+    response.status(204).end();
+  });
+
+  return router;
+}

@@ -1,0 +1,102 @@
+import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import type { LayerTypeId } from '../../../shared/catalog/layerTypes.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
+import { ImportProblem } from '../../importers/importProblem.ts';
+import { computeInJob } from '../../jobs/computeInJob.ts';
+import type { JobHandler } from '../../jobs/handlers.ts';
+import type { JobContext } from '../../jobs/runner.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { BlockLayer } from '../../models/BlockLayer.ts';
+import { FileImport } from '../../models/FileImport.ts';
+import type { Job } from '../../models/Job.ts';
+import { Layer } from '../../models/Layer.ts';
+import { storable } from '../../models/storable.ts';
+import { StoredFile } from '../../models/StoredFile.ts';
+import type { PlacedCells, PlacedLayer } from '../../placing/placed.ts';
+import type { Transaction } from 'objection';
+import { problemNote } from './receive.ts';
+import { withSource } from './source.ts';
+import { targetBlocks } from './whereabouts.ts';
+
+/** Places a new layer on every block it covers, or all layers of the estate on a block whose grid is new. */
+export const placeLayerJob: JobHandler = {
+  work: async (context) => (context.job.subjectType === 'block' ? placeAllOn(context) : placeImport(context)),
+  failed: async (job: Job, problem: string) => {
+    if (job.subjectType !== 'import') return;
+    await FileImport.query().where({ estateId: job.estateId, id: job.subjectId }).where({ state: 'ready' }).patch({ state: 'refused', problem: { code: 'fault', text: problem, params: {} } });
+  },
+};
+
+async function placeImport(context: JobContext): Promise<{ layerIds: string[]; blocks: number }> {
+  const { estateId, subjectId, createdBy } = context.job;
+  const record = await FileImport.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
+  const blocks = await targetBlocks(estateId);
+  const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks })).catch(async (error: unknown) => {
+    const problem = problemNote(error);
+    if (problem !== null) await FileImport.query().where({ estateId, id: record.id }).patch(storable({ state: 'refused' as const, problem }));
+    throw error;
+  });
+  return FileImport.transaction(async (trx) => {
+    const layerIds = await storeLayers(trx, record, placed);
+    await FileImport.query(trx).where({ estateId, id: record.id }).patch({ state: 'done', problem: null, finishedAt: new Date() });
+    await writeAudit(trx, { estateId, personId: createdBy }, { action: 'layer.place', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) } });
+    return { layerIds, blocks: placed[0]!.blocks.length };
+  });
+}
+
+/** The main layer first: layers that follow from it refer to it. */
+async function storeLayers(trx: Transaction, record: FileImport, placed: readonly PlacedLayer[]): Promise<string[]> {
+  const { estateId, answers } = record;
+  const file = await StoredFile.query(trx).findOne({ estateId, id: record.fileId });
+  const name = answers.layerName ?? baseName(record.fileName);
+  const ids: string[] = [];
+  for (const layer of placed) {
+    const made = await Layer.query(trx).insert(
+      storable({
+        estateId, importId: record.id, derivedFrom: layer.derivedFrom === null ? null : ids[0]!, type: layer.type as LayerTypeId, name, unit: layer.unit, measuredOn: answers.capturedOn ?? null, classes: layer.classes, createdBy: record.createdBy,
+        source: { fileName: record.fileName, sha256: file?.sha256 ?? null, value: layer.value, pixelSizeM: layer.pixelSizeM, reference: layer.reference, answers },
+      }),
+    );
+    ids.push(made.id);
+    await BlockLayer.query(trx).insert(layer.blocks.map((cells) => blockLayer(estateId, made.id, cells)));
+  }
+  return ids;
+}
+
+function blockLayer(estateId: string, layerId: string, { blockId, gridKey, cells, coverage, statistics, findings }: PlacedCells): Partial<BlockLayer> {
+  return { estateId, layerId, blockId, gridKey, cells: Buffer.from(encodeCells(cells)), coverage, statistics, findings: findings as BlockLayer['findings'] };
+}
+
+/** Each file again, on this block alone. Files that do not reach it leave it without their layers. */
+async function placeAllOn(context: JobContext): Promise<{ placed: number }> {
+  const { estateId, subjectId: blockId } = context.job;
+  const blocks = await targetBlocks(estateId, { blockId: blockId! });
+  if (blocks.length === 0) return { placed: 0 };
+  const layers = groupBy(await Layer.query().where({ estateId }).whereNull('retiredAt').whereNotNull('importId').orderBy('createdAt'), (layer) => layer.importId!);
+  const records = await FileImport.query().where({ estateId }).findByIds([...layers.keys()]);
+  let done = 0;
+  for (const record of records) {
+    await context.report('placing', done / records.length);
+    const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>({ report: async () => undefined }, 'placeFile', { source, blocks })).catch((error: unknown) => {
+      // A layer that lies elsewhere is none of this block's.
+      if (error instanceof ImportProblem) return [];
+      throw error;
+    });
+    await replaceOn(blockId!, layers.get(record.id)!, placed);
+    done += 1;
+  }
+  return { placed: done };
+}
+
+async function replaceOn(blockId: string, layers: readonly Layer[], placed: readonly PlacedLayer[]): Promise<void> {
+  await BlockLayer.transaction(async (trx) => {
+    const { estateId } = layers[0]!;
+    await BlockLayer.query(trx).where({ estateId, blockId }).whereIn('layerId', layers.map((layer) => layer.id)).delete();
+    const rows = layers.flatMap((layer) => (placed.find((each) => each.type === layer.type)?.blocks ?? []).map((cells) => blockLayer(estateId, layer.id, cells)));
+    if (rows.length > 0) await BlockLayer.query(trx).insert(rows);
+  });
+}
+
+function baseName(fileName: string): string {
+  return fileName.replace(/\.[^.]*$/, '').slice(0, 80).trim() || fileName.slice(0, 80);
+}

@@ -1,0 +1,23 @@
+import { defineGrid } from '../../../shared/analysis/grid.ts';
+import type { CellsGrid } from '../../../shared/contracts/layers.ts';
+import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import { fromUtm } from '../../../shared/geo/utm.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash } from '../../errors.ts';
+import { BlockLayer } from '../../models/BlockLayer.ts';
+import { Layer } from '../../models/Layer.ts';
+import { findBlock } from '../blocks/view.ts';
+
+/** Cells of a layer on a block as they are stored, with the grid they lie on. */
+export async function readCells(access: Access, layerId: string, blockId: string): Promise<{ bytes: Buffer; grid: CellsGrid }> {
+  const layer = await Layer.query().findOne({ estateId: access.estateId, id: layerId }).whereNull('retiredAt').throwIfNotFound();
+  const block = await findBlock(access, blockId);
+  const here = await BlockLayer.query().findOne({ estateId: access.estateId, layerId, blockId }).throwIfNotFound();
+  const { key, epsg, x0, y0, cellSizeM, cols, rows } = defineGrid(block.boundary.coordinates as unknown as MultiPolygonLonLat, block.cellSizeM);
+  if (here.gridKey !== key) throw new Clash('layerStale', `${layer.name} was made for an older outline of ${block.name} and is being placed again. Try again in a moment.`);
+  const corner = (col: number, row: number): [number, number] => {
+    const [lon, lat] = fromUtm([x0 + col * cellSizeM, y0 - row * cellSizeM], epsg);
+    return [lon, lat];
+  };
+  return { bytes: here.cells, grid: { key, epsg, x0, y0, cellSizeM, cols, rows, cornersLonLat: [corner(0, 0), corner(cols, 0), corner(cols, rows), corner(0, rows)] } };
+}

@@ -1,0 +1,81 @@
+import { z } from 'zod';
+import { layerTypeIds } from '../catalog/layerTypes.ts';
+import { id, isoDate, shortName } from './common.ts';
+
+/** red keeps a layer out of zoning unless somebody overrides it; amber is shown wherever the layer is; note is for the record. */
+export const findingSeverities = ['red', 'amber', 'note'] as const;
+
+export const layerFinding = z.object({
+  code: z.string(),
+  severity: z.enum(findingSeverities),
+  params: z.record(z.string(), z.union([z.string(), z.number()])),
+});
+export type LayerFinding = z.infer<typeof layerFinding>;
+
+export const layerClass = z.object({ value: z.number().int(), name: z.string().trim().min(1).max(80), colour: z.string().regex(/^#[0-9a-fA-F]{6}$/).nullable() });
+export type LayerClass = z.infer<typeof layerClass>;
+
+export const layerStatistics = z.object({
+  n: z.number(),
+  missing: z.number(),
+  mean: z.number().nullable(),
+  sd: z.number().nullable(),
+  min: z.number().nullable(),
+  max: z.number().nullable(),
+  quantiles: z.array(z.object({ share: z.number(), value: z.number() })),
+  histogram: z.object({ from: z.number(), to: z.number(), counts: z.array(z.number()) }).nullable(),
+  /** Share of the covered area by class, for layers of classes. */
+  classes: z.array(z.object({ value: z.number(), share: z.number() })).nullable(),
+});
+export type LayerStatistics = z.infer<typeof layerStatistics>;
+
+export const layerOverride = z.object({ by: z.string(), reason: z.string(), at: z.string() });
+
+/** ready: no doubt; doubt: amber findings; blocked: red ones; overridden: red, and somebody answers for it; stale: made for an older outline. */
+export const readiness = z.enum(['ready', 'doubt', 'blocked', 'overridden', 'stale']);
+export type Readiness = z.infer<typeof readiness>;
+
+/** A layer as it lies on one block. */
+export const blockLayerView = z.object({
+  id,
+  blockId: id,
+  type: z.enum(layerTypeIds),
+  name: z.string(),
+  unit: z.string(),
+  measuredOn: isoDate.nullable(),
+  coverage: z.number(),
+  statistics: layerStatistics,
+  findings: z.array(layerFinding),
+  readiness,
+  override: layerOverride.nullable(),
+  classes: z.array(layerClass).nullable(),
+  gridKey: z.string(),
+  derivedFrom: id.nullable(),
+  source: z.object({ fileId: id.nullable(), fileName: z.string().nullable(), sha256: z.string().nullable(), value: z.string().nullable(), pixelSizeM: z.number().nullable(), reference: z.string().nullable(), answers: z.record(z.string(), z.unknown()) }),
+  createdBy: z.string().nullable(),
+  createdAt: z.string(),
+});
+export type BlockLayerView = z.infer<typeof blockLayerView>;
+
+export const layerChange = z
+  .object({ name: shortName, unit: z.string().trim().max(20), measuredOn: isoDate.nullable(), classes: z.array(layerClass).max(255) })
+  .partial()
+  .refine((change) => Object.keys(change).length > 0, 'Nothing to change was sent.');
+export type LayerChange = z.infer<typeof layerChange>;
+
+export const overrideChange = z.object({ blockId: id, reason: z.string().trim().min(5, 'Say why, in at least five letters.').max(400) });
+export type OverrideChange = z.infer<typeof overrideChange>;
+
+/** Where the cells of a layer lie; sent beside them in the header x-grid. */
+export const cellsGrid = z.object({
+  key: z.string(),
+  epsg: z.number(),
+  x0: z.number(),
+  y0: z.number(),
+  cellSizeM: z.number(),
+  cols: z.number(),
+  rows: z.number(),
+  /** North-west, north-east, south-east, south-west, as a map image wants them. */
+  cornersLonLat: z.array(z.tuple([z.number(), z.number()])).length(4),
+});
+export type CellsGrid = z.infer<typeof cellsGrid>;

@@ -1,0 +1,61 @@
+import { describe, expect, it } from 'vitest';
+import { cleanPoints } from '../../shared/analysis/cleanPoints.ts';
+import { gridOfOutline } from '../../shared/analysis/grid.ts';
+import { layerFindings, type LayerFacts } from '../../shared/analysis/layerFindings.ts';
+import { layerStats } from '../../shared/analysis/layerStats.ts';
+
+// 100 by 60 m in cells of 2 m: 50 by 30 cells, all inside.
+const grid = gridOfOutline([[[[500_000, 4_700_000], [500_100, 4_700_000], [500_100, 4_700_060], [500_000, 4_700_060], [500_000, 4_700_000]]]], 32630, 2);
+const facts: LayerFacts = { type: 'vigour', index: 'ndvi', measuredOn: '2025-07-14', pixelSizeM: 0.25, rowSpacingM: 2.5, alleys: 'mown', steelTrellis: null, pointCount: null };
+
+function findings(value: (col: number, row: number) => number, change: Partial<LayerFacts> = {}) {
+  const cells = Float32Array.from({ length: grid.cols * grid.rows }, (_, cell) => value(cell % grid.cols, Math.floor(cell / grid.cols)));
+  return layerFindings({ grid, cells, stats: layerStats(grid, cells), facts: { ...facts, ...change } });
+}
+const slope = (col: number, row: number) => 0.3 + col / 200 + row / 500;
+const codes = (found: ReturnType<typeof findings>) => found.map((finding) => `${finding.severity} ${finding.code}`);
+
+describe('findings about a layer', () => {
+  it('are none for a full, dated picture of fine pixels', () => expect(findings(slope)).toEqual([]));
+
+  it('call 60 % of coverage 60 % and red, 95 % amber, 99 % nothing', () => {
+    expect(findings((col, row) => (col < 30 ? slope(col, row) : NaN))[0]).toEqual({ code: 'partial', severity: 'red', params: { percent: 60, needed: 90 } });
+    expect(codes(findings((col, row) => (row * 50 + col < 1425 ? slope(col, row) : NaN)))).toEqual(['amber gaps']);
+    expect(codes(findings((col, row) => (row * 50 + col < 1485 ? slope(col, row) : NaN)))).toEqual([]);
+  });
+
+  it('see values that the index cannot have, and count them', () => {
+    expect(findings((col, row) => (col === 0 ? 1.5 : slope(col, row)))[0]).toMatchObject({ code: 'impossible', params: { count: 30, percent: 2, value: 1.5, min: -1, max: 1 } });
+    expect(codes(findings((col, row) => 20 + 100 * slope(col, row), { index: null }))).toEqual([]);
+    expect(codes(findings((col) => col - 3, { type: 'conductivity', index: null, pixelSizeM: null, steelTrellis: 'no' }))).toEqual(['red impossible']);
+  });
+
+  it('see one value everywhere, and a picture cut off at its end', () => {
+    expect(codes(findings(() => 0.4))).toEqual(['red constant']);
+    expect(codes(findings((col, row) => Math.min(0.5, slope(col, row))))).toEqual(['amber saturated']);
+  });
+
+  it('ask for the day, fine pixels and mown alleys of a vigour picture, not of a soil map', () => {
+    expect(codes(findings(slope, { measuredOn: null, pixelSizeM: 1, alleys: 'green' }))).toEqual(['amber noDate', 'amber alleyMixed', 'amber greenAlleys']);
+    expect(codes(findings(slope, { type: 'soilNumber', index: null, measuredOn: null, alleys: null }))).toEqual([]);
+  });
+
+  it('tell pixels of half a row spacing from pixels of a tenth', () => {
+    expect(codes(findings(slope, { pixelSizeM: 1.25 }))).toEqual(['amber alleyMixed']);
+    expect(codes(findings(slope, { pixelSizeM: 0.5 }))).toEqual([]);
+    expect(codes(findings(slope, { pixelSizeM: 10 }))).toEqual(['amber alleyMixed', 'note coarsePixels']);
+  });
+
+  it('remember steel trellis and thin surveys', () => {
+    expect(codes(findings((col) => 20 + col, { type: 'conductivity', index: null, pixelSizeM: null, steelTrellis: 'yes', pointCount: 12 }))).toEqual(['amber steelTrellis', 'amber fewPoints']);
+  });
+});
+
+describe('points of a survey', () => {
+  it('lose what the layer cannot hold and what was read standing still, with counts', () => {
+    const { kept, setAside } = cleanPoints({ x: Float64Array.of(0, 0, 5, 9, 12), y: Float64Array.of(0, 0.01, 0, 0, 0), value: Float64Array.of(12, 13, -3, 14, NaN) }, { min: 0, max: 2000 });
+    expect([...kept.value]).toEqual([12, 14]);
+    expect([...kept.x]).toEqual([0, 9]);
+    expect(setAside).toEqual([{ reason: 'missing', count: 1 }, { reason: 'impossible', count: 1 }, { reason: 'samePlace', count: 1 }]);
+  });
+});

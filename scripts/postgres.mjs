@@ -4,7 +4,7 @@ import { statSync } from 'node:fs';
 import { createCluster, dataVersion, runningServer, startCluster, stopCluster } from './postgres/cluster.mjs';
 import { installedPostgres, usablePostgres } from './postgres/installedPostgres.mjs';
 import { definePlace, readPlace, writePlace } from './postgres/privatePlace.mjs';
-import { addExtensions, identifier, literal, withClient } from './postgres/query.mjs';
+import { addExtensions, identifier, literal, query, withClient } from './postgres/query.mjs';
 import { serverUser } from './postgres/systemUser.mjs';
 import { joinUsers, leaveUsers, otherUsers } from './postgres/users.mjs';
 import { anyFreePort, isPortFree } from './process/freePort.mjs';
@@ -72,6 +72,16 @@ async function stopIfUnused() {
   await stopCluster({ folder: place.folder, bin: programsFor(place.folder).bin, user });
 }
 
+/** The database that the environment names; it must answer. */
+async function openExternal(url) {
+  try {
+    await query(url, 'select 1');
+  } catch (error) {
+    throw new Problem(`The database that DATABASE_URL names does not answer: ${error.message || error.code}.`);
+  }
+  return { url, adminUrl: url, isPrivate: false, addExtensions, close: async () => {} };
+}
+
 /**
  * Opens the database for this command. Resolves to
  *   url        address for the application (on the private cluster a role that owns its database and no more)
@@ -81,8 +91,7 @@ async function stopIfUnused() {
  *   close      gives it back; the last command of the checkout stops the cluster
  */
 export async function openDatabase(purpose) {
-  const external = process.env.DATABASE_URL;
-  if (external) return { url: external, adminUrl: external, isPrivate: false, addExtensions, close: async () => {} };
+  if (process.env.DATABASE_URL) return openExternal(process.env.DATABASE_URL);
   const close = () => withLock('database', stopIfUnused);
   const place = await withLock('database', async () => {
     joinUsers(purpose);

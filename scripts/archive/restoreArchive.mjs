@@ -36,7 +36,8 @@ async function compareCounts(url, expected) {
   throw new Problem(`The restored database differs from the backup's list of contents; nothing was changed. ${different.map((table) => `${table}: ${expected[table] ?? 'none'} expected, ${found[table] ?? 'none'} found`).join('; ')}.`);
 }
 
-const maintenance = (adminUrl) => withDatabase(adminUrl, 'postgres');
+/** Another database of the server, to rename and drop ours from. */
+const maintenance = (adminUrl) => withDatabase(adminUrl, databaseName(adminUrl) === 'postgres' ? 'template1' : 'postgres');
 
 /** Makes the empty database that the dump goes into, beside the one in use; resolves to its name. */
 async function makeFresh({ url, adminUrl, addExtensions }) {

@@ -12,6 +12,8 @@ import { addExtensions, query } from '../../scripts/postgres/query.mjs';
 import { createTestDatabase, type TestDatabase } from './setup/testDatabase.ts';
 
 const run = promisify(execFile);
+/** Enough for tests that run whole scripts, which build the server when it is out of date. */
+const scriptsMs = 180_000;
 
 let database: TestDatabase;
 let folder: string;
@@ -72,7 +74,7 @@ test('a backup brings back rows and files exactly, and the state before the rest
   expect(await estateNames()).toEqual(['Changed', 'Later']);
   expect(readFileSync(join(filesFolder, 'later'), 'utf8')).toBe('x');
   expect(existsSync(join(filesFolder, 'cd34'))).toBe(false);
-});
+}, scriptsMs);
 
 test('geometry, the queue and the schema versions survive, sign-ins do not', async () => {
   await query(database.url, `select graphile_worker.add_job('work', '{"jobId": "1"}')`);
@@ -131,7 +133,7 @@ test('while a program uses the database a restore is refused, and with --force i
   await npmRun('restore', archive, '--no-safety-copy', '--force');
   await ended;
   expect(await estateNames()).toEqual(['Kept', `Écart 'n°2'`]);
-});
+}, scriptsMs);
 
 test('rows written while a backup is made are in it wholly or not at all', async () => {
   let isWriting = true;

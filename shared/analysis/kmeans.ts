@@ -31,18 +31,31 @@ const FINALISTS = 3;
  */
 export function fitKMeans(points: PointTable, options: KMeansOptions): KMeansRun {
   const { k, random, restarts = 25, searchCount = 2000, maxIterations = 300 } = options;
-  if (k < 1 || k > 255 || points.count < k) {
-    throw new AnalysisError('too-few-points', `${k} zones cannot be made of ${points.count} cells; ask for fewer zones or use smaller cells.`);
-  }
+  assertEnough(points, k);
   if (k === 1) return refineCentres(points, new Float64Array(points.dimensions), maxIterations);
   const part = points.count > searchCount ? selectPoints(points, sampleIndices(points.count, searchCount, random)) : points;
-  const runs: KMeansRun[] = [];
-  for (let start = 0; start < restarts; start++) runs.push(refineCentres(part, seedCentres(part, k, random), maxIterations));
-  const ranked = differentRuns(runs.sort((a, b) => a.inertia - b.inertia));
-  return ranked
+  return differentRuns(runsFromStarts(part, { k, random, restarts, maxIterations }))
     .slice(0, FINALISTS)
     .map((run) => exchangePoints(points, part === points ? run : refineCentres(points, run.centres, maxIterations)))
     .reduce((best, run) => (run.inertia < best.inertia ? run : best));
+}
+
+/** The best of a few starts as Lloyd leaves it: for references that are made by the hundred and need no last digit. */
+export function quickKMeans(points: PointTable, { k, random, restarts = 3, maxIterations = 50 }: KMeansOptions): KMeansRun {
+  assertEnough(points, k);
+  return runsFromStarts(points, { k, random, restarts, maxIterations })[0]!;
+}
+
+function assertEnough(points: PointTable, k: number): void {
+  if (k >= 1 && k <= 255 && points.count >= k) return;
+  throw new AnalysisError('too-few-points', `${k} zones cannot be made of ${points.count} cells; ask for fewer zones or use smaller cells.`);
+}
+
+/** One run from each start, the smallest sum of squares first. */
+function runsFromStarts(points: PointTable, { k, random, restarts, maxIterations }: Required<Omit<KMeansOptions, 'searchCount'>>): KMeansRun[] {
+  const runs: KMeansRun[] = [];
+  for (let start = 0; start < restarts; start++) runs.push(refineCentres(points, seedCentres(points, k, random), maxIterations));
+  return runs.sort((a, b) => a.inertia - b.inertia);
 }
 
 /** Runs that end at the same centres have the same inertia to the last digits; one of each is enough. */

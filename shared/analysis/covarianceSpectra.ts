@@ -1,0 +1,97 @@
+/**
+ * From how layers resemble themselves and each other at a distance to a recipe for random fields that do the same.
+ * Per frequency a small matrix (power of each layer, shared power of each pair) and its Cholesky factor: white noise times
+ * the factor, transformed, has the layers' covariances and cross-covariances. Multivariate circulant embedding (Chan & Wood
+ * 1999) and phase-randomised surrogates of several series (Prichard & Theiler 1994), both from memory. Only the even part of
+ * a cross-covariance is kept, so the matrices are real. Cost: two transforms for each layer and each pair of layers.
+ */
+
+import { choleskyFactor } from './covarianceCholesky.ts';
+import { lagSums, type LagSums, type MaskedPlane } from './covariance.ts';
+import type { PlaneTransform } from './covarianceFft.ts';
+
+/** Share of the cells that a lag must have as pairs for its covariance to be believed. */
+const LEAST_PAIR_SHARE = 0.02;
+/** Frequencies with less than this share of the mean power are left empty: they cost random numbers and show nothing. */
+const NEGLIGIBLE_POWER = 1e-3;
+
+export interface FieldRecipe {
+  readonly transform: PlaneTransform;
+  readonly layerCount: number;
+  /** Frequencies that carry power. */
+  readonly frequencies: Uint32Array;
+  /** For each of them the lower triangle of the factor, row after row, scaled for the unscaled forward transform. */
+  readonly factors: Float64Array;
+}
+
+/** Layers must have mean 0 over the mask and be 0 outside. */
+export function fieldRecipe(plane: MaskedPlane, layers: readonly Float64Array[]): FieldRecipe {
+  const own = layers.map((layer) => lagSums(plane, layer));
+  const transform = own[0]!.transform;
+  const size = transform.width * transform.height;
+  const power = own.map((sums) => spectrumOf(sums));
+  const scales = power.map((spectrum, layer) => Math.sqrt((varianceOf(own[layer]!) * size) / Math.max(1e-300, sumOfPositive(spectrum))));
+  const shared = (a: number, b: number) => (a === b ? power[a]! : spectrumOf(evenCrossSums(plane, layers, { a, b, own })));
+  const spectra = layers.map((_, a) => layers.slice(0, a + 1).map((__, b) => shared(a, b)));
+  return factorised(transform, spectra, scales);
+}
+
+/** Both layers added have the sums of each plus twice the even part of the cross sums. */
+function evenCrossSums(plane: MaskedPlane, layers: readonly Float64Array[], { a, b, own }: { a: number; b: number; own: readonly LagSums[] }): LagSums {
+  const both = lagSums(plane, layers[a]!.map((value, cell) => value + layers[b]![cell]!));
+  const products = both.products.map((sum, lag) => (sum - own[a]!.products[lag]! - own[b]!.products[lag]!) / 2);
+  return { transform: both.transform, products, pairs: both.pairs };
+}
+
+/** Signed spectrum of a covariance tapered to zero at the width of the block, √cells. */
+export function spectrumOf({ transform, products, pairs }: LagSums): Float64Array {
+  const { width, height } = transform;
+  const cellCount = pairs[0]!;
+  const reach = Math.sqrt(cellCount);
+  const plane = new Float64Array(2 * width * height);
+  for (let row = 0; row < height; row++) {
+    const dy = row < height / 2 ? row : row - height;
+    for (let col = 0; col < width; col++) {
+      const dx = col < width / 2 ? col : col - width;
+      const distance = Math.sqrt(dx * dx + dy * dy);
+      const at = row * width + col;
+      if (distance >= reach || pairs[at]! < LEAST_PAIR_SHARE * cellCount) continue;
+      plane[2 * at] = (products[at]! / pairs[at]!) * 0.5 * (1 + Math.cos((Math.PI * distance) / reach));
+    }
+  }
+  const transformed = transform.forward(plane);
+  return Float64Array.from({ length: width * height }, (_, i) => transformed[2 * i]!);
+}
+
+function varianceOf({ products, pairs }: LagSums): number {
+  return products[0]! / pairs[0]!;
+}
+
+function sumOfPositive(spectrum: Float64Array): number {
+  return spectrum.reduce((sum, value) => sum + Math.max(0, value), 0);
+}
+
+/** Negative power is set to 0, shared power held to what the two layers have, and the variances restored by `scales`. */
+function factorised(transform: PlaneTransform, spectra: readonly (readonly Float64Array[])[], scales: readonly number[]): FieldRecipe {
+  const layerCount = scales.length;
+  const size = transform.width * transform.height;
+  const matrix = new Float64Array(layerCount * layerCount);
+  const frequencies: number[] = [];
+  const factors: number[] = [];
+  const least = scales.map((_, layer) => (NEGLIGIBLE_POWER * sumOfPositive(spectra[layer]![layer]!)) / size);
+  for (let i = 0; i < size; i++) {
+    if (!least.some((limit, layer) => spectra[layer]![layer]![i]! > limit)) continue;
+    for (let a = 0; a < layerCount; a++) {
+      for (let b = 0; b <= a; b++) {
+        const most = Math.sqrt(Math.max(0, spectra[a]![a]![i]!) * Math.max(0, spectra[b]![b]![i]!));
+        const value = Math.max(-most, Math.min(most, spectra[a]![b]![i]!)) * scales[a]! * scales[b]!;
+        matrix[a * layerCount + b] = value;
+        matrix[b * layerCount + a] = value;
+      }
+    }
+    const lower = choleskyFactor(matrix, layerCount);
+    frequencies.push(i);
+    for (let a = 0; a < layerCount; a++) for (let b = 0; b <= a; b++) factors.push(lower[a * layerCount + b]! / Math.sqrt(size));
+  }
+  return { transform, layerCount, frequencies: Uint32Array.from(frequencies), factors: Float64Array.from(factors) };
+}

@@ -1,0 +1,96 @@
+/**
+ * Stripe guard. A sensor's swaths make a layer look alike over long distances along the swath. After a smooth surface is
+ * taken off, the profile of means across the direction that explains most is compared with what other directions explain;
+ * when it stands far out the layer is striped, and every swath is brought to the same mean (moment matching: Horn & Woodham
+ * 1979, from memory). Cost: 36 passes over the cells of the mask.
+ */
+
+import { fittedSurface, withoutSurface } from './covarianceTrend.ts';
+import type { MaskedPlane } from './covariance.ts';
+import { quantileOfSorted } from './quantile.ts';
+
+const DIRECTIONS = 36;
+/** How many times the median direction's share the best direction must explain to count as stripes. */
+export const STRIPE_RATIO = 8;
+
+export interface StripePattern {
+  /** Share of the residual variance that each of 36 directions' profile explains, every 5°, 0 = profile along x. */
+  readonly shares: readonly number[];
+  readonly strongest: number;
+  readonly median: number;
+  /** Variance left after the quadratic surface. */
+  readonly residualVariance: number;
+  readonly isStriped: boolean;
+}
+
+/** `stepCells` is the width of a step of the profile in cells. */
+export function stripePattern(plane: MaskedPlane, values: ArrayLike<number>, stepCells: number): StripePattern {
+  const cells = maskedCells(plane);
+  const rest = withoutSurface(plane, values, fittedSurface(plane, values, 2));
+  const residuals = Float64Array.from(cells, (cell) => rest[cell]!);
+  const residualVariance = meanSquare(residuals);
+  const shares = Array.from({ length: DIRECTIONS }, (_, direction) => {
+    return meanSquare(profileAcross(plane, { cells, values: residuals, direction, stepCells })) / residualVariance;
+  });
+  const strongest = Math.max(...shares);
+  const median = quantileOfSorted([...shares].sort((a, b) => a - b), 0.5);
+  return { shares, strongest, median, residualVariance, isStriped: strongest >= STRIPE_RATIO * median };
+}
+
+/** The values with every step across the strongest direction brought to mean 0. */
+export function withoutStripes(plane: MaskedPlane, values: ArrayLike<number>, { pattern, stepCells }: { pattern: StripePattern; stepCells: number }): Float64Array {
+  const cells = maskedCells(plane);
+  const chosen = Float64Array.from(cells, (cell) => values[cell]!);
+  const profile = profileAcross(plane, { cells, values: chosen, direction: pattern.shares.indexOf(pattern.strongest), stepCells });
+  const level = new Float64Array(plane.mask.length);
+  cells.forEach((cell, i) => (level[cell] = chosen[i]! - profile[i]!));
+  return level;
+}
+
+function maskedCells({ mask }: MaskedPlane): Uint32Array {
+  const cells: number[] = [];
+  for (let cell = 0; cell < mask.length; cell++) if (mask[cell] === 1) cells.push(cell);
+  return Uint32Array.from(cells);
+}
+
+function meanSquare(values: Float64Array): number {
+  let sum = 0;
+  for (const value of values) sum += value * value;
+  return sum / values.length;
+}
+
+interface ProfileInput {
+  readonly cells: Uint32Array;
+  readonly values: Float64Array;
+  readonly direction: number;
+  readonly stepCells: number;
+}
+
+/** For each cell the mean of its step across the direction; steps are counted from the outermost cell. */
+function profileAcross({ width }: MaskedPlane, { cells, values, direction, stepCells }: ProfileInput): Float64Array {
+  const angle = (direction * Math.PI) / DIRECTIONS;
+  const cosine = Math.cos(angle) / stepCells;
+  const sine = Math.sin(angle) / stepCells;
+  const positions = new Float64Array(cells.length);
+  let first = Infinity;
+  let last = -Infinity;
+  for (let i = 0; i < cells.length; i++) {
+    const row = Math.floor(cells[i]! / width);
+    const position = (cells[i]! - row * width) * cosine + row * sine;
+    positions[i] = position;
+    if (position < first) first = position;
+    if (position > last) last = position;
+  }
+  const sums = new Float64Array(Math.floor(last - first) + 2);
+  const counts = new Float64Array(sums.length);
+  for (let i = 0; i < cells.length; i++) {
+    const step = Math.floor(positions[i]! - first);
+    sums[step] = sums[step]! + values[i]!;
+    counts[step] = counts[step]! + 1;
+  }
+  for (let i = 0; i < cells.length; i++) {
+    const step = Math.floor(positions[i]! - first);
+    positions[i] = sums[step]! / counts[step]!;
+  }
+  return positions;
+}

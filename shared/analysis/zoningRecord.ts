@@ -1,0 +1,45 @@
+/** Puts the outcome of the stages together into the rows of the zoning record. */
+
+import type { GapAtK } from './verdictGap.ts';
+import type { ZoningEvidence } from './zoningEvidence.ts';
+import type { FeatureTable } from './zoningFit.ts';
+import type { FitQuality } from './zoningQuality.ts';
+import { describeZones, zoneDifferences, type ZoneStatsInput } from './zoningStats.ts';
+import type { ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes.ts';
+
+export function candidateOf(k: number, input: ZoneStatsInput): ZoningCandidate {
+  const zones = describeZones(input);
+  return { k, labels: input.zones.labels, doubt: input.zones.doubt, zones, differences: zoneDifferences(zones, input.layers) };
+}
+
+/** One row for each k = 1…6: the figures of the fit, of the comparison with no structure, and of the cleaned zones. */
+export function evidenceRows(quality: readonly FitQuality[], { curve, count }: ZoningEvidence, candidates: readonly ZoningCandidate[]): ZoneEvidence[] {
+  return quality.map((row, i) => {
+    const zones = candidates[i]!.zones;
+    const gap: GapAtK | undefined = curve.find(({ k }) => k === row.k);
+    return {
+      ...row,
+      gap: gap?.gap ?? null,
+      gapSd: gap?.gapSd ?? null,
+      score: count.scores.find(({ k }) => k === row.k)?.score ?? null,
+      patches: zones.reduce((sum, zone) => sum + zone.patches, 0),
+      smallestZoneHa: Math.min(...zones.map(({ areaM2 }) => areaM2)) / 10_000,
+    };
+  });
+}
+
+export interface WarningInput {
+  readonly chosen: ZoningCandidate;
+  readonly advisedK: number;
+  readonly table: FeatureTable;
+}
+
+/** Things about the result that a person should know before using it. */
+export function resultWarnings({ chosen, advisedK, table }: WarningInput): ZoningWarning[] {
+  const warnings: ZoningWarning[] = [];
+  const inside = table.cells.length + table.incomplete.length;
+  if (table.incomplete.length > 0) warnings.push({ code: 'cells-filled', about: null, figures: { cells: table.incomplete.length, share: table.incomplete.length / inside } });
+  if (chosen.zones.length < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: chosen.zones.length } });
+  if (chosen.k !== advisedK) warnings.push({ code: 'number-fixed', about: null, figures: { chosen: chosen.k, advised: advisedK } });
+  return warnings;
+}

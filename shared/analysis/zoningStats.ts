@@ -1,0 +1,92 @@
+/** What each zone is like: area, patches, mean and spread of every layer, share of doubtful cells. */
+
+import type { Cells, Grid, Labels } from './grid.ts';
+import { highestLabel } from './labels.ts';
+import type { ZonePolygons } from './polygonise.ts';
+import { patchesPerZone } from './zoningClean.ts';
+import type { CellZones } from './zoningFit.ts';
+import type { Zone, ZoneDifference, ZoneLayerStats, ZoningLayer } from './zoningTypes.ts';
+
+/** Above this the next zone's membership is more than half of the own zone's. */
+export const DOUBTFUL_ABOVE = 0.5;
+
+export interface ZoneStatsInput {
+  readonly grid: Grid;
+  readonly layers: readonly ZoningLayer[];
+  readonly zones: CellZones;
+  /** Drawn zones; null leaves the polygons out and takes areas from the cells. */
+  readonly drawn: readonly ZonePolygons[] | null;
+}
+
+export function describeZones({ grid, layers, zones: { labels, doubt }, drawn }: ZoneStatsInput): Zone[] {
+  const count = highestLabel(labels);
+  const areas = cellAreas(grid, labels, count);
+  const patches = patchesPerZone(grid, labels);
+  const doubtful = doubtfulShares(labels, doubt, count);
+  const stats = layers.map((layer) => ({ layer, byZone: momentsByZone(labels, layer.cells, count) }));
+  return Array.from({ length: count }, (_, i) => {
+    const number = i + 1;
+    const polygons = drawn?.find(({ zone }) => zone === number) ?? null;
+    return {
+      number,
+      areaM2: polygons?.areaM2 ?? areas[number]!,
+      patches: patches[number]!,
+      layers: stats.map(({ layer, byZone }): ZoneLayerStats => ({ layerId: layer.id, ...byZone[number]! })),
+      doubtfulShare: doubtful[number]!,
+      polygonsXY: polygons?.polygonsXY ?? null,
+      polygonsLonLat: polygons?.polygonsLonLat ?? null,
+    };
+  });
+}
+
+/** Lowest and highest zone mean of each numeric layer, with the spread left within zones. */
+export function zoneDifferences(zones: readonly Zone[], layers: readonly ZoningLayer[]): ZoneDifference[] {
+  return layers
+    .filter(({ kind }) => kind === 'number')
+    .flatMap((layer) => {
+      const stats = zones.flatMap((zone) => zone.layers.filter(({ layerId, mean }) => layerId === layer.id && mean !== null));
+      if (stats.length === 0) return [];
+      const means = stats.map(({ mean }) => mean!);
+      const count = stats.reduce((sum, { n }) => sum + n, 0);
+      const within = stats.reduce((sum, { n, sd }) => sum + n * sd! * sd!, 0);
+      return [{ layerId: layer.id, lowest: Math.min(...means), highest: Math.max(...means), withinSd: Math.sqrt(within / count) }];
+    });
+}
+
+function cellAreas(grid: Grid, labels: Labels, count: number): Float64Array {
+  const areas = new Float64Array(count + 1);
+  for (let cell = 0; cell < labels.length; cell++) areas[labels[cell]!] = areas[labels[cell]!]! + grid.share[cell]! * grid.cellSizeM ** 2;
+  return areas;
+}
+
+function doubtfulShares(labels: Labels, doubt: Cells, count: number): Float64Array {
+  const cells = new Float64Array(count + 1);
+  const doubtful = new Float64Array(count + 1);
+  for (let cell = 0; cell < labels.length; cell++) {
+    cells[labels[cell]!] = cells[labels[cell]!]! + 1;
+    if (doubt[cell]! > DOUBTFUL_ABOVE) doubtful[labels[cell]!] = doubtful[labels[cell]!]! + 1;
+  }
+  return doubtful.map((value, zone) => (cells[zone]! > 0 ? value / cells[zone]! : 0));
+}
+
+/** Sums around the layer's first value keep the digits of layers far from 0, such as elevation. */
+function momentsByZone(labels: Labels, cells: Cells, count: number): { n: number; mean: number | null; sd: number | null }[] {
+  const n = new Float64Array(count + 1);
+  const sums = new Float64Array(count + 1);
+  const squares = new Float64Array(count + 1);
+  let origin = NaN;
+  for (let cell = 0; cell < labels.length; cell++) {
+    const value = cells[cell]!;
+    const zone = labels[cell]!;
+    if (zone === 0 || Number.isNaN(value)) continue;
+    if (Number.isNaN(origin)) origin = value;
+    n[zone] = n[zone]! + 1;
+    sums[zone] = sums[zone]! + (value - origin);
+    squares[zone] = squares[zone]! + (value - origin) ** 2;
+  }
+  return Array.from(n, (cellCount, zone) => {
+    if (cellCount === 0) return { n: 0, mean: null, sd: null };
+    const mean = sums[zone]! / cellCount;
+    return { n: cellCount, mean: origin + mean, sd: Math.sqrt(Math.max(0, squares[zone]! / cellCount - mean * mean)) };
+  });
+}

@@ -1,0 +1,141 @@
+/** What goes into a zoning and what comes out. Everything is plain data, so that it can be stored and compared. */
+
+import type { MultiPolygonLonLat, MultiPolygonXY } from '../geo/coordinates.ts';
+import type { Cells, Grid, Labels } from './grid.ts';
+import type { LayerAdvice } from './layerAdvice.ts';
+import type { StandardMethod } from './standardise.ts';
+import type { VerdictResult } from './verdict.ts';
+import type { FruitCheck } from './verdictFruit.ts';
+
+export interface ZoningLayer {
+  readonly id: string;
+  readonly type: string;
+  /** Evidence is measured on the vines or in the soil of this block; context only describes the place. */
+  readonly role: 'evidence' | 'context';
+  /** Classes are codes without order, such as soil units. */
+  readonly kind: 'number' | 'class';
+  /** One value a grid cell in the layer's own unit, NaN where missing. */
+  readonly cells: Cells;
+  /** Null takes the advised weight; 0 leaves the layer out. */
+  readonly weight: number | null;
+}
+
+export interface ZoningOptions {
+  /** Advise looks for the best number; 1…6 fixes it. Candidates for all six are made either way. */
+  readonly zones: 'advise' | number;
+  readonly standardise: StandardMethod;
+  /** Gaussian smoothing of evidence layers, metres; hides rows and pixel noise. 0 smooths nothing. */
+  readonly smoothingM: number;
+  /** Patches smaller than this join a neighbour. */
+  readonly smallestPatchHa: number;
+  /** Replace the weighted layers by their principal components. */
+  readonly principalComponents: boolean;
+  readonly seed: number;
+  /** Draw polygons for every number of zones, not for the chosen one alone. */
+  readonly drawAll: boolean;
+}
+
+/** Readings of one measure of fruit, by grid cell (-1 outside the grid). They test zones and never make them. */
+export interface ZoningReadings {
+  readonly measure: string;
+  readonly values: readonly { readonly cell: number; readonly row: string | null; readonly value: number }[];
+}
+
+export interface ZoningInput {
+  readonly grid: Grid;
+  readonly layers: readonly ZoningLayer[];
+  readonly options?: Partial<ZoningOptions>;
+  readonly readings?: readonly ZoningReadings[];
+}
+
+export type ZoningStage = 'prepare' | 'layer advice' | 'evidence' | 'clusters' | 'quality' | 'clean-up' | 'polygons' | 'statistics' | 'fruit';
+
+/** Called when a stage is done, with the share of the whole work done so far; the caller has the clock. */
+export type StageMark = (stage: ZoningStage, share: number) => void;
+
+export interface ZoneLayerStats {
+  readonly layerId: string;
+  readonly n: number;
+  readonly mean: number | null;
+  /** Population standard deviation of the zone's cells. */
+  readonly sd: number | null;
+}
+
+export interface Zone {
+  readonly number: number;
+  readonly areaM2: number;
+  readonly patches: number;
+  readonly layers: readonly ZoneLayerStats[];
+  /** Share of the zone's cells that could as well belong to another zone. */
+  readonly doubtfulShare: number;
+  /** Null when this number of zones was not drawn. */
+  readonly polygonsXY: MultiPolygonXY | null;
+  readonly polygonsLonLat: MultiPolygonLonLat | null;
+}
+
+export interface ZoningCandidate {
+  readonly k: number;
+  /** 1…k by rising mean of the first layer, 0 outside. A zone that clean-up removed leaves no number free. */
+  readonly labels: Labels;
+  readonly zones: readonly Zone[];
+  /** 0 (clear) … 1 (as near to another zone) per cell, NaN outside. */
+  readonly doubt: Cells;
+  /** Per layer the lowest and highest zone mean in the layer's own unit, and the spread within zones beside it. */
+  readonly differences: readonly ZoneDifference[];
+}
+
+export interface ZoneDifference {
+  readonly layerId: string;
+  readonly lowest: number;
+  readonly highest: number;
+  /** Root of the mean squared deviation from the own zone's mean. */
+  readonly withinSd: number;
+}
+
+/** What speaks for one number of zones. Null where a figure has no meaning, as for one zone. */
+export interface ZoneEvidence {
+  readonly k: number;
+  readonly varianceExplained: number;
+  readonly silhouette: number | null;
+  readonly calinskiHarabasz: number | null;
+  readonly daviesBouldin: number | null;
+  /** Agreement between fits on random halves (adjusted Rand index). */
+  readonly stability: number | null;
+  readonly fuzzinessIndex: number | null;
+  readonly classificationEntropy: number | null;
+  /** ln of how much less is left within the zones than in random fields without zones, on the calm cells. */
+  readonly gap: number | null;
+  readonly gapSd: number | null;
+  /** What the advised number is the highest of. */
+  readonly score: number | null;
+  readonly inertia: number;
+  readonly patches: number;
+  readonly smallestZoneHa: number;
+}
+
+export interface ZoningWarning {
+  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'number-fixed' | 'cells-filled';
+  readonly about: string | null;
+  readonly figures: Readonly<Record<string, number>>;
+}
+
+export interface ZoningResult {
+  readonly engineVersion: string;
+  readonly gridKey: string;
+  readonly options: ZoningOptions;
+  readonly weights: readonly { readonly layerId: string; readonly weight: number }[];
+  readonly advisedWeights: readonly LayerAdvice[];
+  readonly verdict: VerdictResult;
+  readonly fruit: FruitCheck;
+  /** Number of zones that the evidence speaks for: 1 when the verdict is one. */
+  readonly advisedK: number;
+  /** Best number above one, and neighbours close to it. */
+  readonly bestSeveral: number;
+  readonly alsoOffer: readonly number[];
+  readonly chosenK: number;
+  readonly evidence: readonly ZoneEvidence[];
+  readonly candidates: readonly ZoningCandidate[];
+  /** Share of the variance of each principal component when they were asked for. */
+  readonly componentShares: readonly number[] | null;
+  readonly warnings: readonly ZoningWarning[];
+}

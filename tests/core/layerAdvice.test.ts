@@ -1,0 +1,117 @@
+import { describe, expect, it } from 'vitest';
+import { rankCorrelation } from '../../shared/analysis/agreement.ts';
+import { gridOfOutline } from '../../shared/analysis/grid.ts';
+import { pointTable } from '../../shared/analysis/kmeansPoints.ts';
+import { adviseLayers, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
+import { edgeCoincidence, interiorCells } from '../../shared/analysis/layerAdviceEdges.ts';
+import { principalComponents } from '../../shared/analysis/principal.ts';
+import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
+import { gradientSquares } from '../../shared/analysis/verdictCalmCells.ts';
+import { adviseZoneCount } from '../../shared/analysis/zoneCount.ts';
+import { smoothField } from '../bench/simulatedFields.ts';
+
+const grid = gridOfOutline([[[[0, 0], [160, 0], [160, 120], [0, 120], [0, 0]]]], 32631, 4);
+const random = seededRandom(5);
+const fieldOf = (lengthM: number) => Float32Array.from(smoothField(grid, lengthM, random));
+const steps = (field: Float32Array, noise: number) => field.map((value) => (value > 0 ? 1 : 0) + noise * randomNormal(random));
+const body = fieldOf(60);
+const layer = (id: string, role: 'evidence' | 'context', cells: Float32Array, kind: 'number' | 'class' = 'number'): AdvisableLayer => ({ id, role, kind, cells });
+
+describe('edges of two layers', () => {
+  const plane = { width: 6, height: 6, mask: new Uint8Array(36).fill(1) };
+  const picture = (valueAt: (row: number, col: number) => number) => Float64Array.from({ length: 36 }, (_, cell) => valueAt(Math.floor(cell / 6), cell % 6));
+  const edges = (values: Float64Array) => Float64Array.from(interiorCells(plane, 1), (cell) => Math.sqrt(gradientSquares(plane, values)[cell]!));
+  const a = edges(picture((_row, col) => Number(col >= 3)));
+  const b = edges(picture((row, col) => Number(col >= 3) + Number(row >= 3)));
+  const c = edges(picture((row) => Number(row >= 3)));
+
+  it('correlate by rank as scipy has it', () => {
+    expect(rankCorrelation(a, b)).toBeCloseTo(0.707107, 6);
+    expect(rankCorrelation(a, c)).toBeCloseTo(0, 12);
+    expect(rankCorrelation(b, c)).toBeCloseTo(0.707107, 6);
+  });
+
+  it('coincide wholly with themselves and by chance only with a mirror image of noise', () => {
+    const side = 40;
+    const square = { width: side, height: side, mask: new Uint8Array(side * side).fill(1) };
+    const noise = Float64Array.from({ length: side * side }, () => randomNormal(random));
+    const mirrored = noise.map((_, cell) => noise[Math.floor(cell / side) * side + side - 1 - (cell % side)]!);
+    const against = (context: Float64Array) => edgeCoincidence({ plane: square, cellSizeM: 4, evidence: [noise], context: [context] }, seededRandom(1));
+    expect(against(noise).correlation).toBeCloseTo(1, 12);
+    expect(against(noise).deviations).toBeGreaterThan(3);
+    expect(Math.abs(against(mirrored).correlation)).toBeLessThan(2 / Math.sqrt(side * side / 9));
+  });
+});
+
+describe('layer advice', () => {
+  it('counts measured layers the same and leaves context out', () => {
+    const advised = adviseLayers(grid, [layer('vigour', 'evidence', steps(body, 0.3)), layer('conductivity', 'evidence', steps(body, 0.5)), layer('elevation', 'context', fieldOf(90))], seededRandom(1));
+    expect(advised.map(({ weight }) => weight)).toEqual([1, 1, 0]);
+    expect(advised.map(({ code }) => code)).toEqual(['evidence', 'evidence', 'context-off']);
+  });
+
+  it('lets two layers that repeat each other share one voice', () => {
+    const vigour = steps(body, 0.3);
+    const again = vigour.map((value) => 100 + 20 * value);
+    const advised = adviseLayers(grid, [layer('may', 'evidence', vigour), layer('june', 'evidence', again), layer('conductivity', 'evidence', fieldOf(40))], seededRandom(1));
+    expect(advised.map(({ weight }) => weight)).toEqual([0.5, 0.5, 1]);
+    expect(advised[0]).toMatchObject({ code: 'repeats', about: 'june', figures: { correlation: expect.closeTo(1, 5) } });
+  });
+
+  it('offers a soil map whose edges lie where the vines change, numbers or classes alike, and still does not add it', () => {
+    const soil = steps(body, 0);
+    for (const kind of ['number', 'class'] as const) {
+      const advised = adviseLayers(grid, [layer('vigour', 'evidence', steps(body, 0.15)), layer('soil', 'context', soil, kind)], seededRandom(1));
+      expect(advised[1]).toMatchObject({ weight: 0, code: 'context-offered' });
+      expect(advised[1]!.figures.deviations).toBeGreaterThan(3);
+    }
+  });
+
+  it('seldom offers terrain that has nothing to do with the vines', () => {
+    const offered = Array.from({ length: 8 }, (_, seed) => adviseLayers(grid, [layer('vigour', 'evidence', steps(fieldOf(60), 0.3)), layer('elevation', 'context', fieldOf(80))], seededRandom(seed))[1]!).filter(({ code }) => code === 'context-offered');
+    expect(offered.length).toBeLessThanOrEqual(1);
+  });
+
+  it('uses context when there is nothing else, and says so', () => {
+    expect(adviseLayers(grid, [layer('elevation', 'context', body)], seededRandom(1))).toMatchObject([{ weight: 1, code: 'only-context' }]);
+  });
+
+  it('does not fail on a constant context layer', () => {
+    expect(adviseLayers(grid, [layer('vigour', 'evidence', body), layer('flat', 'context', new Float32Array(body.length).fill(3))], seededRandom(1))[1]).toMatchObject({ weight: 0, code: 'context-off' });
+  });
+});
+
+describe('the number of zones', () => {
+  const row = (k: number, gap: number, separation: number) => ({ k, gap, separation, gapSd: 0.1, withinShare: 0.1 });
+
+  it('has the largest ln(Calinski–Harabasz) + gap, and close neighbours are offered', () => {
+    const advice = adviseZoneCount([row(2, 0.2, 100), row(3, 0.9, 150), row(4, 0.85, 152), row(5, 0.2, 100)], 2);
+    expect(advice.best).toBe(3);
+    expect(advice.alsoOffer).toEqual([4]);
+    expect(advice.scores[1]!.score).toBeCloseTo(Math.log(150) + 0.9, 12);
+  });
+
+  it('goes by the gap alone for a single layer, where separation grows with every zone', () => {
+    expect(adviseZoneCount([row(2, 0.6, 100), row(3, 0.5, 300), row(4, 0.4, 900)], 1).best).toBe(2);
+  });
+
+  it('takes the smaller number on a tie', () => {
+    expect(adviseZoneCount([row(2, 0.5, 100), row(3, 0.5, 100)], 2).best).toBe(2);
+  });
+});
+
+describe('principal components', () => {
+  it('of two equal columns are one that keeps the distances', () => {
+    const { scores, shares } = principalComponents(pointTable([[1, 1], [2, 2], [4, 4]]));
+    expect(scores.dimensions).toBe(1);
+    expect(shares[0]).toBeCloseTo(1, 12);
+    expect(scores.values[2]! - scores.values[0]!).toBeCloseTo(3 * Math.SQRT2, 9);
+  });
+
+  it('match numpy on a small table', () => {
+    // numpy 1.24.2 linalg.eigh of the covariance; signs fixed by the largest part.
+    const { shares, loadings } = principalComponents(pointTable([[2, 0, 1], [4, 1, 3], [6, 3, 2], [8, 3, 6], [1, 0, 0]]), 1);
+    [0.931339528, 0.0679847736, 0.000675698305].forEach((share, i) => expect(shares[i]).toBeCloseTo(share, 8));
+    [0.7418454, 0.36369011, 0.56337812, -0.30190849, -0.56903263, 0.76488766].forEach((part, i) => expect(loadings[i]).toBeCloseTo(part, 7));
+  });
+});

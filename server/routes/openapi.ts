@@ -1,8 +1,12 @@
 import { z } from 'zod';
+import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
+import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
+import { blockLayerView, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
 import { newPlan, planBasis, planChange, planRedraw, planView } from '../../shared/contracts/plans.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
+import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { credentials, personChange, session } from '../../shared/contracts/session.ts';
@@ -26,6 +30,27 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}', summary: 'Change an estate', body: estateChange },
   { method: 'post', path: '/api/estates/{estateId}/invitations', summary: 'Invite a person', body: newInvitation },
   { method: 'put', path: '/api/estates/{estateId}/people/{personId}/roles', summary: 'Set the roles of a person', body: rolesChange },
+  { method: 'get', path: '/api/estates/{estateId}/blocks', summary: 'Blocks with area, vines, zones in force, next round and restriction', answer: z.object({ items: z.array(blockLine), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/blocks', summary: 'Make a block from its outline and facts; its rows are laid', body: newBlock, answer: changedBlock },
+  { method: 'post', path: '/api/estates/{estateId}/blocks/check', summary: 'What an outline would come to; saves nothing', body: outlineToCheck, answer: outlineCheck },
+  { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}', summary: 'A block, with its version as ETag', answer: blockView },
+  { method: 'patch', path: '/api/estates/{estateId}/blocks/{blockId}', summary: 'Change facts or outline; needs If-Match', body: blockChange, answer: changedBlock },
+  { method: 'delete', path: '/api/estates/{estateId}/blocks/{blockId}', summary: 'Take a block out of use; needs If-Match' },
+  { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/rows', summary: 'Rows with pieces, numbers and known vines', answer: blockRows },
+  { method: 'put', path: '/api/estates/{estateId}/blocks/{blockId}/rows', summary: 'Number rows and vines anew; needs If-Match', body: numberingChange, answer: blockRows },
+  { method: 'put', path: '/api/estates/{estateId}/blocks/{blockId}/vines', summary: 'Mark vines as missing, dead, replant, off-type or sick', body: censusChange },
+  { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/layers', summary: 'Layers of a block with statistics and findings', answer: z.object({ items: z.array(blockLayerView), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/layers/{layerId}/cells', summary: 'Cells of a layer on a block (?block=), bytes; the grid is in the header x-grid' },
+  { method: 'patch', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Change name, unit, day or legend of a layer', body: layerChange },
+  { method: 'post', path: '/api/estates/{estateId}/layers/{layerId}/override', summary: 'Use a layer in spite of red findings, with a reason', body: overrideChange },
+  { method: 'delete', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Take a layer out of use' },
+  { method: 'get', path: '/api/estates/{estateId}/imports', summary: 'Lines of the import desk', answer: z.object({ items: z.array(importView), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/imports', summary: 'Send files in the multipart field "files"; one line a file', answer: z.object({ items: z.array(importView), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/imports/{importId}', summary: 'What was understood of a file, and what is asked', answer: importView },
+  { method: 'patch', path: '/api/estates/{estateId}/imports/{importId}', summary: 'Answer questions; when none is left the layer is placed', body: importPatch, answer: importView },
+  { method: 'post', path: '/api/estates/{estateId}/imports/{importId}/blocks', summary: 'Make blocks of outlines in a file, all or none', body: outlinesTaken, answer: outlinesMade },
+  { method: 'delete', path: '/api/estates/{estateId}/imports/{importId}', summary: 'Take a line off the import desk' },
+  { method: 'get', path: '/api/estates/{estateId}/files/{fileId}/download', summary: 'An original, byte for byte' },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/plan-basis', summary: 'What a plan on these zones is computed from', answer: planBasis },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/plans', summary: 'Make a sampling plan and draw its vines', body: newPlan, answer: planView },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}', summary: 'A plan with its vines', answer: planView },

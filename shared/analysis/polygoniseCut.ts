@@ -103,22 +103,31 @@ function turn(a: XY, b: XY, c: XY): number {
   return (b[0] - a[0]) * (c[1] - a[1]) - (c[0] - a[0]) * (b[1] - a[1]);
 }
 
+interface OutlineSegment {
+  readonly ring: number;
+  readonly segment: number;
+  readonly p: XY;
+  readonly q: XY;
+}
+
 /** Outline segments by the strips of y they pass. */
 class Outline {
-  private readonly rings: readonly (readonly XY[])[];
-  private readonly strips = new Map<number, { ring: number; segment: number }[]>();
+  private readonly segments: OutlineSegment[];
+  private readonly strips = new Map<number, number[]>();
   private readonly stripM: number;
+  /** Number of the last line segment that each outline segment was tried with: it may lie in several strips. */
+  private readonly triedWith: Int32Array;
+  private tries = 0;
 
   constructor(rings: readonly (readonly XY[])[], stripM: number) {
-    this.rings = rings;
     this.stripM = stripM;
-    rings.forEach((points, ring) => {
-      for (let segment = 0; segment + 1 < points.length; segment++) {
-        for (const strip of this.stripsOf(points[segment]!, points[segment + 1]!)) {
-          const list = this.strips.get(strip);
-          if (list === undefined) this.strips.set(strip, [{ ring, segment }]);
-          else list.push({ ring, segment });
-        }
+    this.segments = rings.flatMap((points, ring) => points.slice(1).map((q, segment) => ({ ring, segment, p: points[segment]!, q })));
+    this.triedWith = new Int32Array(this.segments.length);
+    this.segments.forEach(({ p, q }, at) => {
+      for (let strip = this.stripOf(Math.min(p[1], q[1])); strip <= this.stripOf(Math.max(p[1], q[1])); strip++) {
+        const list = this.strips.get(strip);
+        if (list === undefined) this.strips.set(strip, [at]);
+        else list.push(at);
       }
     });
   }
@@ -127,18 +136,17 @@ class Outline {
     const found: Crossing[] = [];
     for (let at = 0; at + 1 < line.length; at++) {
       const [a, b] = [line[at]!, line[at + 1]!];
-      const met = new Set<string>();
-      for (const strip of this.stripsOf(a, b)) {
-        for (const { ring, segment } of this.strips.get(strip) ?? []) {
-          const [p, q] = [this.rings[ring]![segment]!, this.rings[ring]![segment + 1]!];
-          const [sideA, sideB] = [turn(p, q, a), turn(p, q, b)];
-          const [sideP, sideQ] = [turn(a, b, p), turn(a, b, q)];
-          if (sideA >= 0 === sideB >= 0 || sideP >= 0 === sideQ >= 0 || met.has(`${ring} ${segment}`)) continue;
-          met.add(`${ring} ${segment}`);
-          const partBorder = sideA / (sideA - sideB);
-          const partRing = sideP / (sideP - sideQ);
-          const point: XY = [p[0] + partRing * (q[0] - p[0]), p[1] + partRing * (q[1] - p[1])];
-          const crossing = { node: `${name} ${at} ${ring} ${segment}`, point, alongBorder: at + below1(partBorder), alongRing: segment + below1(partRing) };
+      this.tries++;
+      for (let strip = this.stripOf(Math.min(a[1], b[1])); strip <= this.stripOf(Math.max(a[1], b[1])); strip++) {
+        for (const index of this.strips.get(strip) ?? []) {
+          if (this.triedWith[index] === this.tries) continue;
+          this.triedWith[index] = this.tries;
+          const outlineSegment = this.segments[index]!;
+          const parts = crossingParts([a, b], outlineSegment);
+          if (parts === null) continue;
+          const { ring, segment, p, q } = outlineSegment;
+          const point: XY = [p[0] + parts[1] * (q[0] - p[0]), p[1] + parts[1] * (q[1] - p[1])];
+          const crossing = { node: `${name} ${at} ${index}`, point, alongBorder: at + below1(parts[0]), alongRing: segment + below1(parts[1]) };
           found.push(crossing);
           note(ring, crossing);
         }
@@ -150,19 +158,27 @@ class Outline {
   /** Even–odd rule along a ray to the east. */
   holds([x, y]: XY): boolean {
     let isInside = false;
-    for (const { ring, segment } of this.strips.get(Math.floor(y / this.stripM)) ?? []) {
-      const [px, py] = this.rings[ring]![segment]!;
-      const [qx, qy] = this.rings[ring]![segment + 1]!;
-      if (py > y !== qy > y && x < px + ((y - py) / (qy - py)) * (qx - px)) isInside = !isInside;
+    for (const index of this.strips.get(this.stripOf(y)) ?? []) {
+      const { p, q } = this.segments[index]!;
+      if (p[1] > y !== q[1] > y && x < p[0] + ((y - p[1]) / (q[1] - p[1])) * (q[0] - p[0])) isInside = !isInside;
     }
     return isInside;
   }
 
-  private stripsOf(a: XY, b: XY): number[] {
-    const from = Math.floor(Math.min(a[1], b[1]) / this.stripM);
-    const to = Math.floor(Math.max(a[1], b[1]) / this.stripM);
-    return Array.from({ length: to - from + 1 }, (_, at) => from + at);
+  private stripOf(y: number): number {
+    return Math.floor(y / this.stripM);
   }
+}
+
+/** Where two segments cross, as parts of the first and the second; null when they do not. */
+function crossingParts([a, b]: readonly [XY, XY], { p, q }: OutlineSegment): readonly [number, number] | null {
+  const sideA = turn(p, q, a);
+  const sideB = turn(p, q, b);
+  if (sideA >= 0 === sideB >= 0) return null;
+  const sideP = turn(a, b, p);
+  const sideQ = turn(a, b, q);
+  if (sideP >= 0 === sideQ >= 0) return null;
+  return [sideA / (sideA - sideB), sideP / (sideP - sideQ)];
 }
 
 /** Keeps the segment number of a crossing at the very end of its segment. */

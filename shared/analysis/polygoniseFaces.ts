@@ -50,9 +50,9 @@ function nextSteps(steps: readonly Step[]): Int32Array {
     else list.push(step);
   });
   const onward = new Int32Array(steps.length).fill(-1);
+  const bearings = Float64Array.from(steps, bearingOf);
   for (const list of leaving.values()) {
-    const bearing = new Map(list.map((step) => [step, bearingOf(steps[step]!)]));
-    const clockwise = [...list].sort((a, b) => bearing.get(b)! - bearing.get(a)! || a - b);
+    const clockwise = list.sort((a, b) => bearings[b]! - bearings[a]! || a - b);
     clockwise.forEach((step, index) => (onward[step ^ 1] = clockwise[(index + 1) % clockwise.length]!));
   }
   return onward;

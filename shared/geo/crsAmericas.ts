@@ -12,7 +12,6 @@ export const americanGrids: readonly GridRow[] = [
   [3161, 'NAD83 / Ontario MNR Lambert', '+proj=lcc +lat_0=0 +lon_0=-85 +lat_1=44.5 +lat_2=53.5 +x_0=930000 +y_0=6430000 +ellps=GRS80'],
   [3347, 'NAD83 / Statistics Canada Lambert', '+proj=lcc +lat_0=63.390675 +lon_0=-91.8666666666667 +lat_1=49 +lat_2=77 +x_0=6200000 +y_0=3000000 +datum=NAD83'],
   [3978, 'NAD83 / Canada Atlas Lambert', '+proj=lcc +lat_0=49 +lon_0=-95 +lat_1=49 +lat_2=77 +x_0=0 +y_0=0 +datum=NAD83'],
-  [2943, 'Selvagem Grande / UTM zone 28N', '+proj=utm +zone=28 +ellps=intl +towgs84=-289,-124,60,0,0,0,0'],
   [2945, 'NAD83(CSRS) / MTM zone 3', '+proj=tmerc +lat_0=0 +lon_0=-58.5 +k=0.9999 +x_0=304800 +y_0=0 +ellps=GRS80'],
   [2946, 'NAD83(CSRS) / MTM zone 4', '+proj=tmerc +lat_0=0 +lon_0=-61.5 +k=0.9999 +x_0=304800 +y_0=0 +ellps=GRS80'],
   [2947, 'NAD83(CSRS) / MTM zone 5', '+proj=tmerc +lat_0=0 +lon_0=-64.5 +k=0.9999 +x_0=304800 +y_0=0 +ellps=GRS80'],

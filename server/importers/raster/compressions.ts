@@ -1,5 +1,5 @@
 import { constants, inflateSync } from 'node:zlib';
-import { getDecoder } from 'geotiff';
+import { ZSTDDecoder } from 'zstddec';
 import { decodeLzw } from './lzw.ts';
 import { decodePackBits } from './packBits.ts';
 import { decodeXz } from './xz.ts';
@@ -50,10 +50,12 @@ export const compressions: ReadonlyMap<number, Compression> = new Map<number, Co
 ]);
 
 async function prepareZstd(): Promise<Unpack> {
-  const decoder = await getDecoder(50000, { tileWidth: 1, tileHeight: 1, predictor: 1, bitsPerSample: 8, planarConfiguration: 1 });
+  const decoder = new ZSTDDecoder();
+  await decoder.init();
   return (raw, size) => {
     if (zstdUpperBound(raw) > 2 * size + 2 ** 20) throw new RangeError('Zstandard data unpack to more than their tile');
-    return owned(new Uint8Array(decoder.decodeBlock(raw.buffer) as ArrayBuffer)).subarray(0, size);
+    // With a size given the decoder works in one step; without one it may loop for ever on damaged data.
+    return owned(decoder.decode(raw, size));
   };
 }
 

@@ -56,7 +56,9 @@ export function movedVine(rows: readonly StripRow[], here: StripVine, { move, st
 export function choiceBetween(rows: readonly StripRow[], anchor: StripVine, here: StripVine): StripChoice {
   const indexOf = (vine: StripVine) => rows.findIndex((row) => row.id === vine.rowId);
   const rowIds = idsBetween(rows, indexOf(anchor), indexOf(here));
-  if (anchor.vine === here.vine) return wholeRows(rowIds);
+  const [from, to] = [rows[indexOf(anchor)]!, rows[indexOf(here)]!];
+  // Straight down the rows the place on the ground is the same, whatever its number there.
+  if (vineAtM(from, vineM(to, here.vine)) === anchor.vine) return wholeRows(rowIds);
   const edges = [anchor, here].flatMap((vine) => {
     const row = rows[indexOf(vine)]!;
     return [vineEdgeM(row, vine.vine), vineEdgeM(row, vine.vine + 1)];

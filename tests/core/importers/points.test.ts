@@ -1,0 +1,89 @@
+import { describe, expect, it } from 'vitest';
+import { cellNumber, findDecimalMark } from '../../../server/importers/points/cellNumbers.ts';
+import { readAngle } from '../../../server/importers/points/degrees.ts';
+import { readPoints } from '../../../server/importers/points/readPoints.ts';
+import { text } from './corpus.ts';
+
+const read = (words: string, answers = {}) => readPoints(text(words), { fileName: 'ec.csv', answers });
+
+describe('numbers in cells', () => {
+  it.each([
+    ['12.5', '.', 12.5, ''],
+    ['12,5', ',', 12.5, ''],
+    ['1.234,56', ',', 1234.56, ''],
+    ['1,234.56', '.', 1234.56, ''],
+    ['−3', '.', -3, ''],
+    ['1e-3', '.', 0.001, ''],
+    ['5 mS/m', '.', 5, 'mS/m'],
+    ['12,5%', ',', 12.5, '%'],
+    ['', '.', NaN, ''],
+    ['error', '.', NaN, ''],
+    ['=1+1', '.', NaN, ''],
+    ['0', '.', 0, ''],
+  ] as const)('"%s" with mark "%s" is %f', (cell, mark, value, unit) => {
+    expect(cellNumber(cell, mark)).toEqual({ value, unit });
+  });
+
+  it('commas are decimals when nothing else can be meant, and asked about when thousands could be', () => {
+    expect(findDecimalMark(['12,5', '3,25'], ';')).toEqual({ mark: ',', unsure: false });
+    expect(findDecimalMark(['1,234', '2,345'], ';')).toEqual({ mark: ',', unsure: true });
+    expect(findDecimalMark(['12.5', '1,234'], ';')).toEqual({ mark: '.', unsure: false });
+    expect(findDecimalMark(['1.234,5'], ';')).toEqual({ mark: ',', unsure: false });
+  });
+});
+
+describe('angles', () => {
+  // 44° 50' 12.3" = 44 + 50/60 + 12.3/3600 = 44.83675; 44° 50.205' is the same.
+  it.each([
+    ['44.83675', 44.83675, null, false],
+    ['N44.83675', 44.83675, 'lat', false],
+    ['44°50\'12.3"N', 44.83675, 'lat', true],
+    ['44° 50′ 12.3″ S', -44.83675, 'lat', true],
+    ["44°50.205'", 44.83675, null, true],
+    ['44 50 12.3 N', 44.83675, 'lat', true],
+    ['44:50:12.3', 44.83675, null, true],
+    ['-0 24 36', -0.41, null, true],
+    ['0°24\'36"W', -0.41, 'lon', true],
+    ['0°24\'36"O', -0.41, 'lon', true],
+    ['44°70\'00"N', NaN, 'lat', true],
+    ['north', NaN, null, false],
+  ] as const)('%s', (cell, degrees, axis, isSexagesimal) => {
+    const angle = readAngle(cell, '.');
+    expect(angle.axis).toBe(axis);
+    expect(angle.isSexagesimal).toBe(isSexagesimal);
+    if (Number.isNaN(degrees)) expect(angle.degrees).toBeNaN();
+    else expect(angle.degrees).toBeCloseTo(degrees, 9);
+  });
+});
+
+describe('tables', () => {
+  it('gives positions, numbers with NaN for missing, texts, and the row of each in the file', async () => {
+    const points = await read('id;Breite;Länge;EC;note\r\n1;44,8366;0,4100;12,5;wet\r\n2;;0,4;1;x\r\n3;44,8368;0,4102;;\r\n');
+    expect(points.pointsLonLat).toEqual([[0.41, 44.8366], [0.4102, 44.8368]]);
+    expect([...points.numbers.get('EC')!]).toEqual([12.5, NaN]);
+    expect(points.texts.get('note')).toEqual(['wet', '']);
+    expect(points.rowNumbers).toEqual([2, 4]);
+    expect(points.setAside).toEqual([{ reason: 'no position', count: 1, rows: [3] }]);
+    expect(points).toMatchObject({ separator: ';', decimalMark: ',', encoding: 'UTF-8', epsg: 4326, position: { first: 'Länge', second: 'Breite', frame: 'lonlat' } });
+  });
+
+  it('counts rows set aside by reason', async () => {
+    const points = await read('lat,lon,ec\n44.7,3,1\n,,2\n0,0,3\n44.7,east,4\n44.7\n44.8,3,5,6\n');
+    expect(points.setAside.map(({ reason, count }) => [reason, count])).toEqual([['no position', 1], ['position is 0, 0', 1], ['position is not a number', 1], ['too few cells', 1], ['too many cells', 1]]);
+  });
+
+  it('a zero is a value', async () => {
+    const points = await read('lat,lon,ec\n44.7,3,0\n44.8,3,5\n');
+    expect([...points.numbers.get('ec')!]).toEqual([0, 5]);
+    expect((await read('lat,lon,ec\n51.5,0,1\n51.6,0,2\n')).pointsLonLat).toEqual([[0, 51.5], [0, 51.6]]);
+  });
+
+  it('metres are placed only after the question is answered', async () => {
+    const words = 'E;N;ec\n500010,5;4950010,2;5\n500020;4950020;6\n';
+    expect((await read(words)).pointsLonLat).toEqual([]);
+    const points = await read(words, { epsg: 32631 });
+    // Easting 500010.5 lies 10.5 m east of the meridian of 3°: 10.5 / (0.9996 · 78,846 m a degree at 44.7° N) = 0.000132°.
+    expect(points.pointsLonLat[0]![0]).toBeCloseTo(3 + 0.0001326, 5);
+    expect(points.pointsLonLat[0]![1]).toBeCloseTo(44.7033, 3);
+  });
+});

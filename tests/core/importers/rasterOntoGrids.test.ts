@@ -120,7 +120,7 @@ describe('Landsat-7 and elevation near Olinda against GDAL and numpy', () => {
   };
 
   it('the outline of the five tracts has the area that OGR gives', () => {
-    expect(grid.share.reduce((sum, share) => sum + share, 0) * 4).toBeCloseTo(4138156.55, -1);
+    expect(Math.abs(grid.share.reduce((sum, share) => sum + share, 0) * 4 - 4138160.148)).toBeLessThan(1);
   });
 
   it('the index averaged over the block agrees with the area-weighted mean of the index picture', async () => {

@@ -3,6 +3,7 @@ import type { Knex } from 'knex';
 /**
  * Blocks with rows and known vines; uploaded files, what was understood of them, and layers on block grids.
  * An ordinal of a vine may be 0 or less: a row lengthened at its start end keeps the numbers of the vines it had.
+ * A relief is the lie of the land round all blocks, coarse, from the newest elevations; only maps use it.
  * An import that was refused has no file: only its name and the reason are kept.
  * Keys below an estate are (estate_id, id), so that the database itself refuses a reference across estates.
  */
@@ -144,9 +145,21 @@ export async function up(knex: Knex): Promise<void> {
       foreign key (estate_id, block_id) references blocks (estate_id, id) on delete cascade
     );
     create index block_layers_block on block_layers (estate_id, block_id);
+
+    create table reliefs (
+      estate_id uuid primary key references estates (id) on delete cascade,
+      epsg int not null,
+      x0 double precision not null,
+      y0 double precision not null,
+      cell_size_m double precision not null check (cell_size_m > 0),
+      cols int not null check (cols > 0),
+      rows int not null check (rows > 0),
+      cells bytea not null,
+      updated_at timestamptz not null default now()
+    );
   `);
 }
 
 export async function down(knex: Knex): Promise<void> {
-  await knex.raw('drop table block_layers, layers, imports, files, vines, block_rows, blocks cascade');
+  await knex.raw('drop table reliefs, block_layers, layers, imports, files, vines, block_rows, blocks cascade');
 }

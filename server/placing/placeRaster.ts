@@ -10,6 +10,7 @@ import { ImportProblem } from '../importers/importProblem.ts';
 import { readRasterOntoGrids, type RasterQuantity } from '../importers/raster/readRasterOntoGrids.ts';
 import type { RasterUnderstood } from '../importers/understood.ts';
 import { judgeCells } from './judgeCells.ts';
+import { reliefGrid, reliefOf } from './relief.ts';
 import type { PlaceInput, PlacedCells, PlacedLayer, TargetBlock } from './placed.ts';
 import { readOptionsOf, summaryOf } from './sourceFile.ts';
 
@@ -18,12 +19,13 @@ type Progress = (stage: string, progress: number) => void;
 const mostClasses = 60;
 
 /** Layers of a picture on every block it covers: the values asked for, and slope and facing where they are elevations. */
-export async function placeRaster({ source, blocks }: PlaceInput, understood: RasterUnderstood, report: Progress): Promise<PlacedLayer[]> {
+export async function placeRaster({ source, blocks, withRelief = false }: PlaceInput, understood: RasterUnderstood, report: Progress): Promise<PlacedLayer[]> {
   const { answers } = source;
   const grids = blocks.map((block) => defineGrid(block.boundary, block.cellSizeM));
+  const land = withRelief && answers.purpose === 'elevation' ? reliefGrid(grids) : null;
   const readings = await readRasterOntoGrids(source.path, readOptionsOf(source), {
     quantity: quantityOf(understood, answers),
-    grids,
+    grids: land === null ? grids : [...grids, land],
     ...(answers.noData === undefined ? {} : { noData: answers.noData }),
     onProgress: (done) => report('reading', 0.9 * done),
   });
@@ -33,7 +35,8 @@ export async function placeRaster({ source, blocks }: PlaceInput, understood: Ra
   const cells = readings.map((reading) => (factor === 1 ? reading.cells : reading.cells.map((value) => value * factor)));
   const placing: Placing = { understood, answers, blocks, grids };
   const main = layerOf(placing, type, cells);
-  return type === 'elevation' ? [main, ...terrainLayers(placing, cells)] : [main];
+  if (type !== 'elevation') return [main];
+  return [land === null ? main : { ...main, relief: reliefOf(land, cells.at(-1)!) }, ...terrainLayers(placing, cells.slice(0, grids.length))];
 }
 
 interface Placing {

@@ -28,6 +28,8 @@ export interface TargetBlock {
 export interface PlaceInput {
   source: SourceFile;
   blocks: TargetBlock[];
+  /** True for a new file: elevations then also give the estate's relief. */
+  withRelief?: boolean;
 }
 
 /** Cells of one layer on one block, judged. */
@@ -38,6 +40,17 @@ export interface PlacedCells {
   coverage: number;
   statistics: LayerStatistics;
   findings: LayerFinding[];
+}
+
+/** Heights of the land round all blocks, coarse: for the map, never for a calculation. */
+export interface PlacedRelief {
+  epsg: number;
+  x0: number;
+  y0: number;
+  cellSizeM: number;
+  cols: number;
+  rows: number;
+  cells: Float32Array;
 }
 
 /** A layer made of a file: the one that was asked for, or one that follows from it such as slope. */
@@ -52,4 +65,5 @@ export interface PlacedLayer {
   pixelSizeM: number | null;
   reference: string | null;
   blocks: PlacedCells[];
+  relief?: PlacedRelief;
 }

@@ -3,7 +3,7 @@ import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
 import { layerChange, overrideChange } from '../../shared/contracts/layers.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
-import { readCells } from '../services/layers/cells.ts';
+import { readCells, readRelief } from '../services/layers/cells.ts';
 import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
 import { listLayers } from '../services/layers/view.ts';
 
@@ -16,6 +16,10 @@ export function layerRoutes(): Router {
   router.get('/blocks/:blockId/layers', allow('estate.see', 'read'), async (request, response) => {
     const items = await listLayers(accessOf(request), idParam(request, 'blockId'));
     response.json({ items, total: items.length });
+  });
+
+  router.get('/relief', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await readRelief(accessOf(request)));
   });
 
   router.get('/layers/:layerId/cells', allow('estate.see', 'read'), async (request, response) => {

@@ -3,7 +3,7 @@ import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
 import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
-import { blockLayerView, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
+import { blockLayerView, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
 import { newPlan, planBasis, planChange, planRedraw, planView } from '../../shared/contracts/plans.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
@@ -40,6 +40,7 @@ const operations: Operation[] = [
   { method: 'put', path: '/api/estates/{estateId}/blocks/{blockId}/rows', summary: 'Number rows and vines anew; needs If-Match', body: numberingChange, answer: blockRows },
   { method: 'put', path: '/api/estates/{estateId}/blocks/{blockId}/vines', summary: 'Mark vines as missing, dead, replant, off-type or sick', body: censusChange },
   { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/layers', summary: 'Layers of a block with statistics and findings', answer: z.object({ items: z.array(blockLayerView), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/relief', summary: 'Heights of the land round all blocks, for maps', answer: reliefView.nullable() },
   { method: 'get', path: '/api/estates/{estateId}/layers/{layerId}/cells', summary: 'Cells of a layer on a block (?block=), bytes; the grid is in the header x-grid' },
   { method: 'patch', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Change name, unit, day or legend of a layer', body: layerChange },
   { method: 'post', path: '/api/estates/{estateId}/layers/{layerId}/override', summary: 'Use a layer in spite of red findings, with a reason', body: overrideChange },

@@ -5,10 +5,11 @@ import { Person } from '../models/Person.ts';
 
 const pageSize = 50;
 
-/** Audit entries, newest first, in pages by key. */
-export async function listAudit(access: Access, before: number | null) {
+/** Audit entries, newest first, in pages by key; `subject` keeps those about one thing. */
+export async function listAudit(access: Access, { before, subject }: { before: number | null; subject: string | null }) {
   const query = AuditEntry.query().where({ estateId: access.estateId }).orderBy('id', 'desc').limit(pageSize);
   if (before !== null) query.where('id', '<', before);
+  if (subject !== null) query.where({ subjectId: subject });
   const entries = await query;
   const people = await Person.query().findByIds([...new Set(entries.map((entry) => entry.personId).filter((id) => id !== null))]);
   return {

@@ -79,3 +79,7 @@ export const cellsGrid = z.object({
   cornersLonLat: z.array(z.tuple([z.number(), z.number()])).length(4),
 });
 export type CellsGrid = z.infer<typeof cellsGrid>;
+
+/** Heights of the land round all blocks, for the map alone. `cells`: the same bytes as those of a layer, in base 64. */
+export const reliefView = z.object({ cellSizeM: z.number(), columns: z.number().int(), rows: z.number().int(), cornersLonLat: cellsGrid.shape.cornersLonLat, cells: z.string() });
+export type ReliefView = z.infer<typeof reliefView>;

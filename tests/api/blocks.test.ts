@@ -177,6 +177,15 @@ describe('changing a block', () => {
     expect(entry).toMatchObject({ before: { notes: '' }, after: { notes: 'Old drain in the east.' } });
   });
 
+  it('leaves a line in the block’s own history, and in nobody else’s', async () => {
+    const [one, other] = [await addBlock(), await addBlock()];
+    await owner.write('patch', `${base()}/blocks/${one.id}`).set('if-match', '"1"').send({ trellis: 'wires' });
+    const actions = async (id: string) => (await owner.get(`${base()}/audit?subject=${id}`)).body.items.map((item: { action: string }) => item.action);
+    expect(await actions(one.id)).toEqual(['block.change', 'block.create']);
+    expect(await actions(other.id)).toEqual(['block.create']);
+    expect((await owner.get(`${base()}/audit?subject=everything`)).status).toBe(422);
+  });
+
   it('refuses a crossing outline and keeps the old one', async () => {
     const block = await addBlock();
     const answer = await owner.write('patch', `${base()}/blocks/${block.id}`).set('if-match', '"1"').send({ variety: 'X', boundary: outline([[0, 0], [100, 60], [100, 0], [0, 60]]) });

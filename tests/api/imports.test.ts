@@ -159,6 +159,14 @@ describe('elevation', () => {
       expect(of('slope').derivedFrom).toBe(of('elevation').id);
       expect(of('slope').unit).toBe('°');
     }
+    const relief = (await agent.get(`${base()}/relief`)).body;
+    const heights = decodeFloatCells(Uint8Array.from(Buffer.from(relief.cells as string, 'base64')));
+    expect(heights.length).toBe(relief.columns * relief.rows);
+    // Two blocks over 250 by 60 m with 250 m around; the picture covers only the middle of it.
+    expect(relief.columns * relief.cellSizeM).toBeGreaterThan(740);
+    const known = heights.filter((height) => !Number.isNaN(height));
+    expect(Math.max(...known)).toBeCloseTo(300 + 0.2 * 69, 0);
+    expect(known.length).toBeLessThan(heights.length / 4);
   });
 });
 

@@ -1,3 +1,4 @@
+import type { Transaction } from 'objection';
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { LayerTypeId } from '../../../shared/catalog/layerTypes.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
@@ -10,10 +11,10 @@ import { BlockLayer } from '../../models/BlockLayer.ts';
 import { FileImport } from '../../models/FileImport.ts';
 import type { Job } from '../../models/Job.ts';
 import { Layer } from '../../models/Layer.ts';
+import { keepRelief } from '../../models/Relief.ts';
 import { storable } from '../../models/storable.ts';
 import { StoredFile } from '../../models/StoredFile.ts';
 import type { PlacedCells, PlacedLayer } from '../../placing/placed.ts';
-import type { Transaction } from 'objection';
 import { problemNote } from './receive.ts';
 import { withSource } from './source.ts';
 import { targetBlocks } from './whereabouts.ts';
@@ -31,13 +32,15 @@ async function placeImport(context: JobContext): Promise<{ layerIds: string[]; b
   const { estateId, subjectId, createdBy } = context.job;
   const record = await FileImport.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
   const blocks = await targetBlocks(estateId);
-  const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks })).catch(async (error: unknown) => {
+  const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks, withRelief: true })).catch(async (error: unknown) => {
     const problem = problemNote(error);
     if (problem !== null) await FileImport.query().where({ estateId, id: record.id }).patch(storable({ state: 'refused' as const, problem }));
     throw error;
   });
   return FileImport.transaction(async (trx) => {
     const layerIds = await storeLayers(trx, record, placed);
+    const { relief } = placed[0]!;
+    if (relief) await keepRelief(trx, estateId, { ...relief, cells: Buffer.from(encodeCells(relief.cells)) });
     await FileImport.query(trx).where({ estateId, id: record.id }).patch({ state: 'done', problem: null, finishedAt: new Date() });
     await writeAudit(trx, { estateId, personId: createdBy }, { action: 'layer.place', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) } });
     return { layerIds, blocks: placed[0]!.blocks.length };

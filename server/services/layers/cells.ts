@@ -1,11 +1,12 @@
 import { defineGrid } from '../../../shared/analysis/grid.ts';
-import type { CellsGrid } from '../../../shared/contracts/layers.ts';
+import type { CellsGrid, ReliefView } from '../../../shared/contracts/layers.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
+import { Relief } from '../../models/Relief.ts';
 import { findBlock } from '../blocks/view.ts';
 
 /** Cells of a layer on a block as they are stored, with the grid they lie on. */
@@ -15,9 +16,21 @@ export async function readCells(access: Access, layerId: string, blockId: string
   const here = await BlockLayer.query().findOne({ estateId: access.estateId, layerId, blockId }).throwIfNotFound();
   const { key, epsg, x0, y0, cellSizeM, cols, rows } = defineGrid(block.boundary.coordinates as unknown as MultiPolygonLonLat, block.cellSizeM);
   if (here.gridKey !== key) throw new Clash('layerStale', `${layer.name} was made for an older outline of ${block.name} and is being placed again. Try again in a moment.`);
+  return { bytes: here.cells, grid: { key, epsg, x0, y0, cellSizeM, cols, rows, cornersLonLat: cornersOf({ epsg, x0, y0, cellSizeM, cols, rows }) } };
+}
+
+/** The lie of the land round all blocks; null where no elevations were ever brought in. */
+export async function readRelief(access: Access): Promise<ReliefView | null> {
+  const relief = await Relief.query().findById(access.estateId);
+  if (!relief) return null;
+  const { cellSizeM, cols, rows, cells } = relief;
+  return { cellSizeM, columns: cols, rows, cornersLonLat: cornersOf(relief), cells: cells.toString('base64') };
+}
+
+function cornersOf({ epsg, x0, y0, cellSizeM, cols, rows }: Omit<CellsGrid, 'key' | 'cornersLonLat'>): CellsGrid['cornersLonLat'] {
   const corner = (col: number, row: number): [number, number] => {
     const [lon, lat] = fromUtm([x0 + col * cellSizeM, y0 - row * cellSizeM], epsg);
     return [lon, lat];
   };
-  return { bytes: here.cells, grid: { key, epsg, x0, y0, cellSizeM, cols, rows, cornersLonLat: [corner(0, 0), corner(cols, 0), corner(cols, rows), corner(0, rows)] } };
+  return [corner(0, 0), corner(cols, 0), corner(cols, rows), corner(0, rows)];
 }

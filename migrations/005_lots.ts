@@ -143,6 +143,18 @@ export async function up(knex: Knex): Promise<void> {
       unique (estate_id, id),
       foreign key (estate_id, lot_id) references lots (estate_id, id) on delete cascade
     );
+
+    -- References below an estate may be checked at the end of a transaction, so that a whole estate can be taken away at once.
+    do $$
+      declare reference record;
+      begin
+        for reference in
+          select conrelid::regclass as owner, conname from pg_constraint
+          where contype = 'f' and connamespace = 'public'::regnamespace and not condeferrable
+        loop
+          execute format('alter table %s alter constraint %I deferrable initially immediate', reference.owner, reference.conname);
+        end loop;
+      end $$;
   `);
 }
 

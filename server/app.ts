@@ -27,6 +27,7 @@ import { recordRoutes } from './routes/records.ts';
 import { restrictionRoutes } from './routes/restrictions.ts';
 import { roundRoutes } from './routes/rounds.ts';
 import { sessionRoutes } from './routes/session.ts';
+import { zoningRoutes } from './routes/zonings.ts';
 import { receiveFiles } from './storage/uploads.ts';
 
 const weekMs = 7 * 86_400_000;
@@ -89,7 +90,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
-  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes());
+  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
   router.use(planRoutes(), roundRoutes({ publicUrl }));
   return router;
 }

@@ -8,8 +8,8 @@ export interface Ground {
   soilDepthM: Field;
   /** 0 … 1, what a vine makes of its place in this block. */
   vigour: (block: DemoBlock) => Field;
-  /** Apparent conductivity, mS/m. */
-  conductivity: Field;
+  /** Apparent conductivity, mS/m: deeper soil holds more water and conducts better. */
+  conductivity: (block: DemoBlock) => Field;
 }
 
 /** A south-facing hillside with two spurs, a hollow between them and shallow marl on the crests. */
@@ -21,7 +21,11 @@ export function makeGround(seed: number): Ground {
 
   const elevationM: Field = (x, y) => 128 + 0.055 * y + 9 * broad(x, y) + 3.2 * middle(x, y) + 6 * Math.sin((x + 40 * bent(x, y)) / 150);
   const soilDepthM: Field = (x, y) => Math.max(0.25, 1.05 - 0.42 * Math.sin((x + 46 * bent(x, y)) / 150 + 0.4) + 0.3 * middle(x + 300, y) + 0.1 * fine(x, y));
-  const conductivity: Field = (x, y) => Math.max(3, 11 + 19 * step(soilDepthM(x, y), 0.95, 0.07) + 12 * step(soilDepthM(x, y), 1.25, 0.07) + 1.6 * fine(x + 900, y));
+  const conductivity = (block: DemoBlock): Field => {
+    const [low, high] = block.truth === 'twoSteps' ? middleOf(thresholds(block, soilDepthM)) : thresholds(block, soilDepthM);
+    const steps = block.truth === 'even' ? () => 14 : (x: number, y: number) => 11 + 17 * step(soilDepthM(x, y), low, 0.03) + (high > low ? 15 * step(soilDepthM(x, y), high, 0.03) : 0);
+    return (x, y) => Math.max(3, steps(x, y) + (block.truth === 'even' ? 0 : 1.2 * fine(x + 900, y)));
+  };
 
   const vigour = (block: DemoBlock): Field => {
     const [minX, , maxX] = extentOf(block);
@@ -57,4 +61,8 @@ export function extentOf(block: DemoBlock): [number, number, number, number] {
   const xs = block.ringM.map(([x]) => x);
   const ys = block.ringM.map(([, y]) => y);
   return [Math.min(...xs), Math.min(...ys), Math.max(...xs), Math.max(...ys)];
+}
+
+function middleOf([low, high]: [number, number]): [number, number] {
+  return [(low + high) / 2, (low + high) / 2];
 }

@@ -98,6 +98,7 @@ export function conductivityPoints(ground: Ground, seed: number): DemoFile {
   const random = seededRandom(seed);
   const lines = ['latitude,longitude,ec_deep_mS_m,speed_kmh'];
   for (const block of blocks) {
+    const conductivity = ground.conductivity(block);
     const bearing = (block.rowBearingDeg * Math.PI) / 180;
     const [x0, y0, x1, y1] = extentOf(block);
     const reach = Math.hypot(x1 - x0, y1 - y0) / 2;
@@ -109,7 +110,7 @@ export function conductivityPoints(ground: Ground, seed: number): DemoFile {
         if (!insideRing(block.ringM, x, y)) continue;
         const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], estate.epsg);
         const fault = random();
-        const value = fault < 0.004 ? -ground.conductivity(x, y) : ground.conductivity(x, y) + 1.1 * randomNormal(random);
+        const value = fault < 0.004 ? -conductivity(x, y) : conductivity(x, y) + 1.1 * randomNormal(random);
         lines.push(`${lat.toFixed(7)},${lon.toFixed(7)},${value.toFixed(1)},${(fault > 0.992 ? 0 : 5 + random()).toFixed(1)}`);
       }
     }

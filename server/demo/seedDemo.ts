@@ -5,6 +5,8 @@ import { seedBlocks } from './seedBlocks.ts';
 import { seedEstate } from './seedEstate.ts';
 import { seedFruit } from './seedFruit.ts';
 import { seedLayers } from './seedLayers.ts';
+import { seedLots } from './seedLots.ts';
+import { seedZones } from './seedZones.ts';
 
 const groundSeed = 7;
 
@@ -16,7 +18,7 @@ export type SeedStep = 'estate' | 'blocks' | 'layers' | 'fruit' | 'zones' | 'pla
  */
 export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (step: SeedStep) => void }): Promise<boolean> {
   const step = options.onStep ?? (() => undefined);
-  if (options.reset) await Estate.query().where({ isDemo: true }).delete();
+  if (options.reset) await eraseDemo();
   else if (await Estate.query().findOne({ isDemo: true })) return false;
   const days = demoDays(options.now.toISOString().slice(0, 10));
   const ground = makeGround(groundSeed);
@@ -29,10 +31,22 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     await seedLayers(made, ground, days);
     step('fruit');
     await seedFruit(made, laid, { ground, days });
+    step('zones');
+    await seedZones(made, laid, options.now);
+    step('lots');
+    await seedLots(made, days);
   } catch (error) {
     // Half a demo would look like a broken estate; the next start lays it anew.
-    await Estate.query().where({ isDemo: true }).delete();
+    await eraseDemo();
     throw error;
   }
   return true;
+}
+
+/** Takes the demo estate away with everything below it; references are checked once all of it is gone. */
+async function eraseDemo(): Promise<void> {
+  await Estate.transaction(async (trx) => {
+    await trx.raw('set constraints all deferred');
+    await Estate.query(trx).where({ isDemo: true }).delete();
+  });
 }

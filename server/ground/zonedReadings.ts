@@ -28,7 +28,7 @@ export interface ZonedReading {
  * Readings of a block with today's zone of their vines; corrected readings are replaced by their corrections.
  * A reading without row and number is given to the vine nearest to its position, within three metres.
  */
-export async function zonedReadings(estateId: string, options: { ground: BlockVines; zoneOf: Uint8Array; seasonId?: string }): Promise<ZonedReading[]> {
+export async function zonedReadings(estateId: string, options: { ground: BlockVines; zoneOf: Uint8Array; seasonId?: string; until?: Date }): Promise<ZonedReading[]> {
   const { ground, zoneOf } = options;
   const query = Reading.query()
     .where('readings.estateId', estateId)
@@ -37,6 +37,7 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
     .orderBy('takenAt')
     .select('readings.*', asGeoJson('readings.position').as('position'));
   if (options.seasonId) query.where('readings.seasonId', options.seasonId);
+  if (options.until) query.where('readings.receivedAt', '<=', options.until);
   const [rows, estate] = await Promise.all([query, Estate.query().findById(estateId).throwIfNotFound()]);
   const dayOf = dayIn(estate.timeZone);
   return rows.map((row) => {

@@ -1,5 +1,6 @@
 import type { Job } from '../models/Job.ts';
 import { placeLayerJob } from '../services/imports/placeLayer.ts';
+import { zoningJob } from '../services/zonings/runZoning.ts';
 import type { JobContext } from './runner.ts';
 
 export interface JobHandler {
@@ -12,4 +13,5 @@ export interface JobHandler {
 /** One row a kind of job. */
 export const handlers: Record<string, JobHandler> = {
   placeLayer: placeLayerJob,
+  zoning: zoningJob,
 };

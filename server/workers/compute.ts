@@ -10,6 +10,8 @@ const computations = {
   outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,
   placeFile: async () => (await import('../placing/placeFile.ts')).placeFile,
   shareRound: async () => (await import('../ground/shareRound.ts')).shareRound,
+  traceZones: async () => (await import('./traceZones.ts')).traceZones,
+  zoning: async () => (await import('../../shared/analysis/zoning.ts')).makeZoning,
 } satisfies Record<string, () => Promise<Computation>>;
 
 export type ComputeName = keyof typeof computations;

@@ -1,0 +1,78 @@
+import { Router } from 'express';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { newZoning, publishRequest, revisionOnly, zoneEditRequest, zoningChange } from '../../shared/contracts/zonings.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '../services/zonings/editZones.ts';
+import { liveZones } from '../services/zonings/liveZones.ts';
+import { nameZoning } from '../services/zonings/nameZoning.ts';
+import { compareZonings, publishEffects, publishZones } from '../services/zonings/publish.ts';
+import { requestZoning } from '../services/zonings/request.ts';
+import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
+
+const shownQuery = z.object({ zones: z.coerce.number().int().min(1).max(6).optional() });
+const listQuery = z.object({ block: id.optional() });
+const compareQuery = z.object({ with: id });
+
+/** Zonings: asked for, read, kept as a draft, changed by hand, published. */
+export function zoningRoutes(): Router {
+  const router = Router({ mergeParams: true });
+
+  router.post('/blocks/:blockId/zonings', allow('zoning.run', 'propose'), async (request, response) => {
+    const made = await requestZoning(accessOf(request), idParam(request, 'blockId'), newZoning.parse(request.body), new Date().toISOString().slice(0, 10));
+    response.status(202).json(made);
+  });
+  router.get('/blocks/:blockId/zonings', allow('estate.see', 'read'), async (request, response) => {
+    const items = await listZonings(accessOf(request), idParam(request, 'blockId'));
+    response.json({ items, total: items.length });
+  });
+  router.get('/zonings', allow('estate.see', 'read'), async (request, response) => {
+    const items = await listZonings(accessOf(request), listQuery.parse(request.query).block ?? null);
+    response.json({ items, total: items.length });
+  });
+  router.get('/zones', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await liveZones(accessOf(request)));
+  });
+  router.get('/zonings/:zoningId', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null));
+  });
+  router.get('/zonings/:zoningId/labels', allow('estate.see', 'read'), async (request, response) => {
+    const { labels, gridKey } = await readLabels(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null);
+    response.set('x-grid-key', gridKey).type('application/octet-stream').send(Buffer.from(labels));
+  });
+  router.patch('/zonings/:zoningId', allow('zones.edit', 'propose'), async (request, response) => {
+    const { name, chosenZones } = zoningChange.parse(request.body);
+    const zoningId = idParam(request, 'zoningId');
+    if (name !== undefined) await nameZoning(accessOf(request), zoningId, name);
+    if (chosenZones !== undefined) await keepAsDraft(accessOf(request), zoningId, chosenZones);
+    response.json(await viewZoning(accessOf(request), zoningId, null));
+  });
+  router.get('/zonings/:zoningId/edits', allow('estate.see', 'read'), async (request, response) => {
+    const items = await listEdits(accessOf(request), idParam(request, 'zoningId'));
+    response.json({ items, total: items.length });
+  });
+  router.post('/zonings/:zoningId/edits', allow('zones.edit', 'propose'), async (request, response) => {
+    await editZones(accessOf(request), idParam(request, 'zoningId'), zoneEditRequest.parse(request.body));
+    response.status(201).json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), null));
+  });
+  for (const step of ['undo', 'redo'] as const) {
+    router.post(`/zonings/:zoningId/${step}`, allow('zones.edit', 'propose'), async (request, response) => {
+      await stepEdits(accessOf(request), idParam(request, 'zoningId'), { step, ...revisionOnly.parse(request.body) });
+      response.json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), null));
+    });
+  }
+  router.get('/zonings/:zoningId/effects', allow('zones.edit', 'propose'), async (request, response) => {
+    response.json(await publishEffects(accessOf(request), idParam(request, 'zoningId')));
+  });
+  router.get('/zonings/:zoningId/compare', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), compareQuery.parse(request.query).with));
+  });
+  router.post('/zonings/:zoningId/publish', allow('zones.publish'), async (request, response) => {
+    await publishZones(accessOf(request), idParam(request, 'zoningId'), { ...publishRequest.parse(request.body), now: new Date() });
+    response.json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), null));
+  });
+  router.post('/zonings/:zoningId/restore', allow('zones.restore', 'propose'), async (request, response) => {
+    response.status(201).json(await restoreAsDraft(accessOf(request), idParam(request, 'zoningId')));
+  });
+  return router;
+}

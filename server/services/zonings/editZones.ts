@@ -1,0 +1,136 @@
+import type { Transaction } from 'objection';
+import { decodeLabels, encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import { applyEdit, replayEdits, zoneMapOf, type ZoneEdit, type ZoneMap } from '../../../shared/analysis/edits.ts';
+import type { ZoneEditLine, ZoneOperation } from '../../../shared/contracts/zonings.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, Stale, Unusable } from '../../errors.ts';
+import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Person } from '../../models/Person.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
+import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
+import { editFromOperation } from './editFromOperation.ts';
+import { drawZones, storeZones } from './storeZones.ts';
+
+/** Keeps the candidate with so many zones as a draft that can be edited. Keeping another number later starts the draft anew. */
+export async function keepAsDraft(access: Access, zoningId: string, zoneCount: number): Promise<void> {
+  const zoning = await findZoning(access, zoningId);
+  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', 'This zoning has no result yet. Wait until it is done.');
+  if (zoning.state === 'live' || zoning.state === 'retired') throw new Clash('published', 'These zones were published. Take them up as a new draft to change them.');
+  const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount }).throwIfNotFound();
+  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  const map = zoneMapOf(gridOf(ground), decodeLabels(candidate.labels));
+  zoning.chosenZones = zoneCount;
+  const drawn = await drawZones(zoning, ground, map);
+  await Zoning.transaction(async (trx) => {
+    const locked = await lockZoning(trx, access, zoningId, zoning.revision);
+    await ZoneEditRecord.query(trx).where({ estateId: access.estateId, zoningId }).delete();
+    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'draft', chosenZones: zoneCount, baseLabels: candidate.labels });
+    await storeZones(trx, locked, { ground, map, drawn });
+    await writeAudit(trx, access, { action: 'zones.keep', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, after: { zones: zoneCount } });
+  });
+}
+
+/** One act of the manager's hand. What was undone before it is let go: the list goes on from here. */
+export async function editZones(access: Access, zoningId: string, input: { operation: ZoneOperation; reason: string; revision: number }): Promise<void> {
+  const { zoning, ground, edits } = await openDraft(access, zoningId, input.revision);
+  const before = replay(zoning, ground, edits);
+  const edit = editFromOperation(ground, before, input.operation);
+  const after = applyEdit(gridOf(ground), before, edit);
+  const drawn = await drawZones(zoning, ground, after);
+  await Zoning.transaction(async (trx) => {
+    const locked = await lockZoning(trx, access, zoningId, input.revision);
+    await ZoneEditRecord.query(trx).where({ estateId: access.estateId, zoningId, undone: true }).delete();
+    const sequence = edits.filter((record) => !record.undone).length + 1;
+    await ZoneEditRecord.query(trx).insert({ estateId: access.estateId, zoningId, sequence, operation: { edit, asked: input.operation }, reason: input.reason, authorId: access.personId });
+    await storeZones(trx, locked, { ground, map: after, drawn });
+    await writeAudit(trx, access, { action: 'zones.edit', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, after: input.operation, reason: input.reason || null });
+  });
+}
+
+/** Takes the last edit back, or brings the last one taken back again; as often as there are edits. */
+export async function stepEdits(access: Access, zoningId: string, input: { step: 'undo' | 'redo'; revision: number }): Promise<void> {
+  const { zoning, ground, edits } = await openDraft(access, zoningId, input.revision);
+  const target = input.step === 'undo' ? edits.filter((record) => !record.undone).at(-1) : edits.find((record) => record.undone);
+  if (!target) throw new Clash('nothingToStep', input.step === 'undo' ? 'There is no edit to undo.' : 'There is no edit to redo.');
+  target.undone = input.step === 'undo';
+  const after = replay(zoning, ground, edits);
+  const drawn = await drawZones(zoning, ground, after);
+  await Zoning.transaction(async (trx) => {
+    const locked = await lockZoning(trx, access, zoningId, input.revision);
+    await ZoneEditRecord.query(trx).where({ estateId: access.estateId, zoningId, sequence: target.sequence }).patch({ undone: target.undone });
+    await storeZones(trx, locked, { ground, map: after, drawn });
+    await writeAudit(trx, access, { action: `zones.${input.step}`, subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, after: { sequence: target.sequence } });
+  });
+}
+
+export async function listEdits(access: Access, zoningId: string): Promise<ZoneEditLine[]> {
+  await findZoning(access, zoningId);
+  const rows = await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId }).orderBy('sequence');
+  const people = await Person.query().findByIds([...new Set(rows.flatMap((row) => (row.authorId ? [row.authorId] : [])))]).select('id', 'name');
+  return rows.map((row) => ({ sequence: row.sequence, operation: (row.operation as StoredEdit).asked, reason: row.reason, undone: row.undone, author: people.find((person) => person.id === row.authorId)?.name ?? null, at: row.at.toISOString() }));
+}
+
+/** Takes a zoning up again as a new draft; the old one stays as it is. */
+export async function restoreAsDraft(access: Access, zoningId: string): Promise<{ id: string }> {
+  const old = await findZoning(access, zoningId);
+  if (old.labels === null) throw new Unusable('noZones', 'This zoning has no zones that could be taken up.');
+  const ground = await loadBlockVines(access.estateId, old.blockId);
+  const map = await mapOf(old, ground);
+  const drawn = await drawZones(old, ground, map);
+  return Zoning.transaction(async (trx) => {
+    const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId: old.blockId }).max('number as number')) as unknown as { number: number }[];
+    const { blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
+    const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
+    const named = map.zones.filter(({ name }) => name !== null);
+    await ZoneEditRecord.query(trx).insert(named.map(({ number, name }, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit: { kind: 'rename', zone: number, name }, asked: { kind: 'rename', zone: number, name } }, reason: '', authorId: access.personId })));
+    await storeZones(trx, copy, { ground, map, drawn });
+    await writeAudit(trx, access, { action: 'zones.restore', subjectType: 'zoning', subjectId: copy.id, subjectName: ground.block.name, after: { from: old.number } });
+    return { id: copy.id };
+  });
+}
+
+interface StoredEdit {
+  edit: ZoneEdit;
+  asked: ZoneOperation;
+}
+
+async function mapOf(zoning: Zoning, ground: BlockVines): Promise<ZoneMap> {
+  return replay(zoning, ground, await ZoneEditRecord.query().where({ estateId: zoning.estateId, zoningId: zoning.id }).orderBy('sequence'));
+}
+
+function replay(zoning: Zoning, ground: BlockVines, edits: readonly ZoneEditRecord[]): ZoneMap {
+  const grid = gridOf(ground);
+  return replayEdits(grid, zoneMapOf(grid, decodeLabels(zoning.baseLabels!)), edits.filter((record) => !record.undone).map((record) => (record.operation as StoredEdit).edit));
+}
+
+async function findZoning(access: Access, zoningId: string): Promise<Zoning> {
+  return Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+}
+
+async function openDraft(access: Access, zoningId: string, revision: number): Promise<{ zoning: Zoning; ground: BlockVines; edits: ZoneEditRecord[] }> {
+  const zoning = await findZoning(access, zoningId);
+  requireDraft(zoning);
+  await requireRevision(access, zoning, revision);
+  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  if (gridOf(ground).key !== zoning.gridKey) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since these zones were made. Run the zoning again.`);
+  return { zoning, ground, edits: await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId }).orderBy('sequence') };
+}
+
+function requireDraft(zoning: Zoning): void {
+  if (zoning.state !== 'draft') throw new Clash('notDraft', 'Only a draft can be edited. Keep a proposal as a draft, or take published zones up as a new draft.');
+}
+
+async function requireRevision(access: Access, zoning: Zoning, revision: number): Promise<void> {
+  if (zoning.revision === revision) return;
+  const last = await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId: zoning.id }).orderBy('at', 'desc').first();
+  const who = last?.authorId ? ((await Person.query().findById(last.authorId))?.name ?? 'Somebody') : 'Somebody';
+  throw new Stale('zonesChanged', `${who} changed these zones since you read them. Load them again; your step was not taken.`, { revision: zoning.revision, who });
+}
+
+export async function lockZoning(trx: Transaction, access: Access, zoningId: string, revision: number): Promise<Zoning> {
+  const locked = await Zoning.query(trx).findOne({ estateId: access.estateId, id: zoningId }).forUpdate().throwIfNotFound();
+  await requireRevision(access, locked, revision);
+  return locked;
+}

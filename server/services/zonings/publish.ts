@@ -1,0 +1,132 @@
+import { adjustedRandIndex } from '../../../shared/analysis/agreement.ts';
+import type { PublishEffects, ZoningComparison } from '../../../shared/contracts/zonings.ts';
+import { estateSettings } from '../../../shared/contracts/estate.ts';
+import { vineIndex } from '../../../shared/geo/vines.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash } from '../../errors.ts';
+import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Lot } from '../../models/Lot.ts';
+import { LotPart } from '../../models/LotPart.ts';
+import { LotRowRun } from '../../models/LotRowRun.ts';
+import { Person } from '../../models/Person.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Round } from '../../models/Round.ts';
+import { RoundPerson } from '../../models/RoundPerson.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { lockZoning } from './editZones.ts';
+
+/** What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. */
+export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
+  const { zoning, live, ground, before, after } = await loadBoth(access, zoningId);
+  const readings = await zonedReadings(access.estateId, { ground, zoneOf: after, seasonId: zoning.seasonId });
+  const inBlock = readings.filter((reading) => reading.vine >= 0);
+  const rounds = await Round.query().where({ estateId: access.estateId, blockId: zoning.blockId }).whereIn('state', ['sent', 'open']).orderBy('onDate');
+  return {
+    replaces: live?.number ?? null,
+    readingsMoved: live ? inBlock.filter((reading) => before[reading.vine] !== after[reading.vine]).length : 0,
+    readingsOutside: readings.filter((reading) => reading.zone === 0).length,
+    vinesMoved: live ? moved(before, after) : 0,
+    openRounds: await peopleOf(access, rounds),
+    plans: live ? await Plan.query().where({ estateId: access.estateId, zoningId: live.id }).whereNot({ state: 'closed' }).resultSize() : 0,
+    lots: live ? await lotsTouched(access, { zoning, ground, before, after }) : [],
+    underFloor: await underFloor(access, { after, sampled: inBlock.map((reading) => reading.vine) }),
+  };
+}
+
+/** Puts the draft in force for its season; the zones that were in force are kept as they were. */
+export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; now: Date }): Promise<void> {
+  await Zoning.transaction(async (trx) => {
+    const zoning = await lockZoning(trx, access, zoningId, input.revision);
+    if (zoning.state !== 'draft') throw new Clash('notDraft', 'Only a draft can be published. Keep a proposal as a draft first.');
+    const [replaced] = await Zoning.query(trx).where({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' }).forUpdate().select('id', 'number');
+    if (replaced) await Zoning.query(trx).where({ estateId: access.estateId, id: replaced.id }).patch({ state: 'retired' });
+    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'live', publishedAt: input.now, publishedBy: access.personId });
+    const { block } = await loadBlockVines(access.estateId, zoning.blockId, trx);
+    await writeAudit(trx, access, { action: 'zones.publish', subjectType: 'zoning', subjectId: zoningId, subjectName: block.name, before: { live: replaced?.number ?? null }, after: { live: zoning.number }, reason: input.reason || null });
+  });
+}
+
+/** Two zonings of one block vine by vine. */
+export async function compareZonings(access: Access, zoningId: string, otherId: string): Promise<ZoningComparison> {
+  const one = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  const other = await Zoning.query().findOne({ estateId: access.estateId, id: otherId, blockId: one.blockId }).throwIfNotFound();
+  const ground = await loadBlockVines(access.estateId, one.blockId);
+  const [a, b] = [zonesOfVines(ground, one), zonesOfVines(ground, other)];
+  const both = [...a.keys()].filter((vine) => a[vine]! > 0 && b[vine]! > 0);
+  const pairs = groupBy(both, (vine) => `${a[vine]} ${b[vine]}`);
+  return {
+    vines: both.length,
+    vinesMoved: both.filter((vine) => a[vine] !== b[vine]).length,
+    adjustedRand: adjustedRandIndex(both.map((vine) => a[vine]!), both.map((vine) => b[vine]!)),
+    pairs: [...pairs.values()].map((vines) => ({ from: a[vines[0]!]!, to: b[vines[0]!]!, vines: vines.length })).sort((x, y) => x.from - y.from || x.to - y.to),
+  };
+}
+
+interface Both {
+  zoning: Zoning;
+  live: Zoning | undefined;
+  ground: BlockVines;
+  before: Uint8Array;
+  after: Uint8Array;
+}
+
+async function loadBoth(access: Access, zoningId: string): Promise<Both> {
+  const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  const live = await Zoning.query().findOne({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' });
+  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  const after = zonesOfVines(ground, zoning);
+  return { zoning, live, ground, after, before: live ? zonesOfVines(ground, live) : new Uint8Array(after.length) };
+}
+
+function moved(before: Uint8Array, after: Uint8Array): number {
+  return before.reduce((sum, zone, vine) => sum + (zone === after[vine] ? 0 : 1), 0);
+}
+
+async function peopleOf(access: Access, rounds: Round[]): Promise<PublishEffects['openRounds']> {
+  const sent = await RoundPerson.query().where({ estateId: access.estateId }).whereIn('roundId', rounds.map((round) => round.id));
+  const people = await Person.query().findByIds([...new Set(sent.map((row) => row.personId))]).select('id', 'name');
+  return rounds.map((round) => ({
+    id: round.id,
+    onDate: round.onDate,
+    people: sent.filter((row) => row.roundId === round.id).map((row) => people.find((person) => person.id === row.personId)?.name ?? ''),
+  }));
+}
+
+/** Lots keep their vines whatever the zones are called; what changes is which zone those vines count for. */
+async function lotsTouched(access: Access, { zoning, ground, before, after }: Omit<Both, 'live'>): Promise<PublishEffects['lots']> {
+  const runs = (await LotRowRun.query()
+    .where('lot_row_runs.estateId', access.estateId)
+    .join(`${LotPart.tableName} as part`, 'part.id', 'lot_row_runs.lotPartId')
+    .join(`${Lot.tableName} as lot`, 'lot.id', 'part.lotId')
+    .join('scenarios as scenario', 'scenario.id', 'lot.scenarioId')
+    .where('scenario.isLive', true)
+    .where('part.blockId', zoning.blockId)
+    .select('lot.id as lotId', 'lot.name as lotName', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as { lotId: string; lotName: string; rowId: string; from: number; to: number }[];
+  return [...groupBy(runs, (run) => run.lotId).values()]
+    .map((own) => ({ id: own[0]!.lotId, name: own[0]!.lotName, vinesMoved: own.reduce((sum, run) => sum + movedInRun(ground, run, (vine) => before[vine] !== after[vine]), 0) }))
+    .filter((lot) => lot.vinesMoved > 0);
+}
+
+function movedInRun(ground: BlockVines, run: { rowId: string; from: number; to: number }, isMoved: (vine: number) => boolean): number {
+  const row = ground.rowIndexOf.get(run.rowId);
+  if (row === undefined) return 0;
+  let count = 0;
+  for (let ordinal = run.from; ordinal <= run.to; ordinal++) {
+    const vine = vineIndex(ground.vines, row, ordinal);
+    if (vine >= 0 && isMoved(vine)) count += 1;
+  }
+  return count;
+}
+
+/** Zones in which fewer vines were sampled this season than the estate's floor, where the block was sampled at all. */
+async function underFloor(access: Access, { after, sampled }: { after: Uint8Array; sampled: number[] }): Promise<PublishEffects['underFloor']> {
+  if (sampled.length === 0) return [];
+  const { floorVines } = estateSettings.parse((await Estate.query().findById(access.estateId).throwIfNotFound()).settings);
+  const zones = [...new Set(after)].filter((zone) => zone > 0).sort((a, b) => a - b);
+  const vines = [...new Set(sampled)];
+  return zones.map((zone) => ({ zone, sampled: vines.filter((vine) => after[vine] === zone).length, floor: floorVines })).filter((row) => row.sampled < row.floor);
+}

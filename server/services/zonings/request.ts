@@ -1,0 +1,53 @@
+import { reachOf } from '../../../shared/catalog/permissions.ts';
+import { zoningOptions, type NewZoning } from '../../../shared/contracts/zonings.ts';
+import { ENGINE_VERSION } from '../../../shared/analysis/zoning.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, NotAllowed, Unusable } from '../../errors.ts';
+import { loadBlockLayers } from '../../ground/zoneLayers.ts';
+import { enqueueJob } from '../../jobs/queue.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Block } from '../../models/Block.ts';
+import { Season } from '../../models/Season.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { readinessOf } from '../layers/view.ts';
+
+const leastCoverage = 0.6;
+
+/** Asks for a zoning of a block; it runs in the background. Whoever may only propose repeats a recipe that is stored. */
+export async function requestZoning(access: Access, blockId: string, input: NewZoning, today: string): Promise<{ zoningId: string; jobId: string }> {
+  const block = await Block.query().findOne({ estateId: access.estateId, id: blockId }).whereNull('retiredAt').throwIfNotFound();
+  const options = zoningOptions.parse(input);
+  if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
+  await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
+  const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();
+  if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make the season first.');
+  return Zoning.transaction(async (trx) => {
+    await Block.query(trx).findOne({ estateId: access.estateId, id: blockId }).forUpdate();
+    const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId }).max('number as number')) as unknown as { number: number | null }[];
+    const zoning = await Zoning.query(trx).insert({
+      estateId: access.estateId, blockId, seasonId: season.id, number: (last?.number ?? 0) + 1, name: input.name, state: 'running',
+      options, seed: input.seed, engineVersion: ENGINE_VERSION, gridKey: block.gridKey, createdBy: access.personId,
+    });
+    const jobId = await enqueueJob(trx, access, { kind: 'zoning', subjectType: 'zoning', subjectId: zoning.id });
+    await writeAudit(trx, access, { action: 'zoning.run', subjectType: 'zoning', subjectId: zoning.id, subjectName: block.name, after: { ...options, seed: input.seed } });
+    return { zoningId: zoning.id, jobId };
+  });
+}
+
+async function requireKnownRecipe(access: Access, blockId: string, options: ReturnType<typeof zoningOptions.parse>): Promise<void> {
+  const earlier = await Zoning.query().where({ estateId: access.estateId, blockId }).select('options');
+  const wanted = JSON.stringify(options);
+  if (!earlier.some((zoning) => JSON.stringify(zoningOptions.parse(zoning.options)) === wanted)) throw new NotAllowed('You may run a zoning again as it was; the agronomist chooses other layers and weights.');
+}
+
+/** A layer with red findings keeps out of zoning unless somebody answers for it by name. */
+async function requireUsableLayers(access: Access, block: Block, layerIds: string[]): Promise<void> {
+  const found = await loadBlockLayers(access.estateId, block.id, layerIds);
+  if (found.length < new Set(layerIds).size) throw new Unusable('layerMissing', `Some of these layers do not lie on ${block.name}. Choose from the layers of the block.`);
+  for (const { layer, placed } of found) {
+    const readiness = readinessOf(placed, block.gridKey);
+    if (readiness === 'stale') throw new Clash('layerStale', `Layer "${layer.name}" was made for an older outline of ${block.name}. Place it again first.`);
+    if (readiness === 'blocked') throw new Unusable('layerBlocked', `Layer "${layer.name}" has findings that keep it out. Read them, and overrule them with a reason if you must.`);
+    if (placed.coverage < leastCoverage && readiness !== 'overridden') throw new Unusable('layerCoverage', `Layer "${layer.name}" covers ${Math.round(placed.coverage * 100)} % of ${block.name}; ${leastCoverage * 100} % is needed.`);
+  }
+}

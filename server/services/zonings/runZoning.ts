@@ -1,0 +1,73 @@
+import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import { cellAt } from '../../../shared/analysis/grid.ts';
+import { defaultZoningOptions } from '../../../shared/analysis/zoning.ts';
+import type { ZoningInput, ZoningReadings, ZoningResult } from '../../../shared/analysis/zoningTypes.ts';
+import { zoningOptions } from '../../../shared/contracts/zonings.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
+import { Clash } from '../../errors.ts';
+import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
+import { loadBlockLayers, zoningLayer } from '../../ground/zoneLayers.ts';
+import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { computeInJob } from '../../jobs/computeInJob.ts';
+import type { JobHandler } from '../../jobs/handlers.ts';
+import type { Job } from '../../models/Job.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
+import { plainFigures } from './plainFigures.ts';
+
+/** Measures of fruit that may confirm zones; they never make them. */
+const fruitMeasures = ['brix', 'ph', 'ta', 'clusterWeight', 'clusterCount'];
+
+/** Computes a zoning and stores the record with a candidate for each number of zones. */
+export const zoningJob: JobHandler = {
+  work: async (context) => {
+    const { estateId, subjectId } = context.job;
+    const zoning = await Zoning.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
+    const ground = await loadBlockVines(estateId, zoning.blockId);
+    const result = await computeInJob<ZoningResult>(context, 'zoning', await inputOf(zoning, ground));
+    await storeResult(zoning, result);
+    return { zoningId: zoning.id, advisedZones: result.advisedK };
+  },
+  failed: async (job: Job) => {
+    await Zoning.query().where({ estateId: job.estateId, id: job.subjectId, state: 'running' }).patch({ state: 'failed' });
+  },
+};
+
+/** Everything that decides the outcome, from what is stored: the same record gives the same zones. */
+export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput> {
+  const options = zoningOptions.parse(zoning.options);
+  const grid = gridOf(ground);
+  if (zoning.gridKey !== grid.key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
+  const found = await loadBlockLayers(zoning.estateId, zoning.blockId, options.layers.map(({ layerId }) => layerId));
+  const layers = found.map((entry) => zoningLayer(entry, options.layers.find(({ layerId }) => layerId === entry.layer.id)!.weight));
+  const { zones, standardise, smoothingM, smallestPatchHa, principalComponents } = options;
+  return { grid, layers, readings: await fruitOf(zoning, ground, grid), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed: zoning.seed, drawAll: true } };
+}
+
+/** The newest visit of each measure of fruit in the zoning's season, up to the moment it was asked for. */
+async function fruitOf(zoning: Zoning, ground: BlockVines, grid: ZoningInput['grid']): Promise<ZoningReadings[]> {
+  const readings = await zonedReadings(zoning.estateId, { ground, zoneOf: new Uint8Array(ground.vines.count), seasonId: zoning.seasonId, until: zoning.createdAt });
+  const counted = readings.filter((reading) => reading.excludedReason === null && reading.vine >= 0 && fruitMeasures.includes(reading.measureCode));
+  return [...groupBy(counted, (reading) => reading.measureCode)].map(([measure, all]) => {
+    const newest = all.reduce((latest, { visit }) => (visit > latest ? visit : latest), '');
+    const values = all.filter(({ visit }) => visit === newest).map(({ vine, value }) => ({ cell: cellAt(grid, [ground.vines.x[vine]!, ground.vines.y[vine]!]), row: ground.stored[ground.vines.row[vine]!]!.id, value }));
+    return { measure, values };
+  });
+}
+
+async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> {
+  const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares } = result;
+  await Zoning.transaction(async (trx) => {
+    await ZoningCandidate.query(trx).where({ estateId: zoning.estateId, zoningId: zoning.id }).delete();
+    await ZoningCandidate.query(trx).insert(
+      candidates.map(({ k, labels, doubt, zones, differences }) => ({
+        estateId: zoning.estateId, zoningId: zoning.id, zoneCount: k, labels: Buffer.from(encodeCells(labels)), doubt: Buffer.from(encodeCells(doubt)),
+        zones: plainFigures({ differences, zones: zones.map(({ polygonsXY: _metres, ...zone }) => zone) }),
+      })),
+    );
+    await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).patch({
+      state: 'proposed', engineVersion: result.engineVersion, verdict: plainFigures(verdict), advisedZones: result.advisedK,
+      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares }),
+    });
+  });
+}

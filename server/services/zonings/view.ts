@@ -1,0 +1,173 @@
+import type { MultiPolygon } from 'geojson';
+import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
+import { layerType } from '../../../shared/catalog/layerTypes.ts';
+import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
+import type { Zone as TracedZone, ZoneDifference, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
+import type { VerdictResult } from '../../../shared/analysis/verdict.ts';
+import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type ZoningView } from '../../../shared/contracts/zonings.ts';
+import { sampleSize } from '../../../shared/sampling/sampleSize.ts';
+import type { Access } from '../../access/access.ts';
+import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { Block } from '../../models/Block.ts';
+import { asGeoJson } from '../../models/geometry.ts';
+import { Job } from '../../models/Job.ts';
+import { Layer } from '../../models/Layer.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Person } from '../../models/Person.ts';
+import { Zone } from '../../models/Zone.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
+
+/** What `zonings.evidence` holds. */
+interface StoredEvidence {
+  rows: ZoneEvidence[];
+  advisedWeights: LayerAdvice[];
+  weights: { layerId: string; weight: number }[];
+  alsoOffer: number[];
+  bestSeveral: number;
+  warnings: ZoningWarning[];
+}
+
+interface StoredCandidate {
+  zones: TracedZone[];
+  differences: ZoneDifference[];
+}
+
+const lineColumns = ['id', 'estateId', 'blockId', 'number', 'name', 'state', 'verdict', 'advisedZones', 'chosenZones', 'seed', 'revision', 'createdBy', 'createdAt', 'publishedAt', 'seasonId'] as const;
+
+/** Zonings of a block, or of the estate's blocks, newest first. */
+export async function listZonings(access: Access, blockId: string | null): Promise<ZoningLine[]> {
+  const query = Zoning.query().where({ estateId: access.estateId }).orderBy('createdAt', 'desc').limit(400).select(...lineColumns);
+  if (blockId !== null) {
+    await Block.query().findOne({ estateId: access.estateId, id: blockId }).throwIfNotFound();
+    query.where({ blockId });
+  }
+  return linesOf(access, await query);
+}
+
+async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
+  const people = await Person.query().findByIds([...new Set(rows.flatMap((row) => (row.createdBy ? [row.createdBy] : [])))]).select('id', 'name');
+  const jobs = await Job.query().where({ estateId: access.estateId, subjectType: 'zoning' }).whereIn('subjectId', rows.map((row) => row.id)).orderBy('createdAt').select('id', 'subjectId');
+  return rows.map((row) => ({
+    id: row.id,
+    blockId: row.blockId,
+    number: row.number,
+    name: row.name,
+    state: row.state,
+    verdict: (row.verdict as VerdictResult | null)?.verdict ?? null,
+    advisedZones: row.advisedZones,
+    chosenZones: row.chosenZones,
+    seed: Number(row.seed),
+    revision: row.revision,
+    createdBy: people.find((person) => person.id === row.createdBy)?.name ?? null,
+    createdAt: row.createdAt.toISOString(),
+    publishedAt: row.publishedAt?.toISOString() ?? null,
+    jobId: jobs.filter((job) => job.subjectId === row.id).at(-1)?.id ?? null,
+  }));
+}
+
+/** The whole record of a zoning, with the zones of one number: those kept, else the number asked for, else the advised one. */
+export async function viewZoning(access: Access, zoningId: string, shown: number | null): Promise<ZoningView> {
+  const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  const [line] = await linesOf(access, [zoning]);
+  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  const options = zoningOptions.safeParse(zoning.options);
+  const evidence = zoning.evidence as StoredEvidence | null;
+  const verdict = zoning.verdict as VerdictResult | null;
+  const kept = zoning.baseLabels !== null;
+  const count = kept && shown === null ? (zoning.chosenZones ?? 1) : (shown ?? Math.max(1, zoning.advisedZones ?? 1));
+  const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: count });
+  const stored = candidate ? (candidate.zones as StoredCandidate) : null;
+  const showsKept = kept && (shown === null || shown === zoning.chosenZones);
+  const job = line!.jobId === null ? undefined : await Job.query().findById(line!.jobId).select('problem');
+  return {
+    ...line!,
+    blockName: ground.block.name,
+    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, principalComponents: false },
+    engineVersion: zoning.engineVersion,
+    layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
+    isJudged: verdict?.isJudged ?? false,
+    reasons: (verdict?.reasons ?? []).map((reason) => ({ ...reason, figures: { ...reason.figures } })),
+    alsoOffer: evidence?.alsoOffer ?? [],
+    evidence: evidence ? await evidenceRows(access, evidence.rows, ground) : [],
+    differences: stored ? [...stored.differences] : [],
+    warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
+    shown: count,
+    zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
+    problem: job?.problem ?? null,
+  };
+}
+
+async function layersOf(access: Access, layerIds: string[], evidence: StoredEvidence | null): Promise<ZoningView['layers']> {
+  const layers = await Layer.query().where({ estateId: access.estateId }).findByIds(layerIds).select('id', 'name', 'type', 'unit', 'measuredOn');
+  return layerIds.flatMap((layerId) => {
+    const layer = layers.find((candidate) => candidate.id === layerId);
+    const advised = evidence?.advisedWeights.find((advice) => advice.id === layerId);
+    if (!layer) return [];
+    return [{
+      layerId, name: layer.name, type: layer.type, unit: layer.unit, measuredOn: layer.measuredOn, role: layerType(layer.type).role,
+      weight: evidence?.weights.find((entry) => entry.layerId === layerId)?.weight ?? 0,
+      advised: advised ? { weight: advised.weight, code: advised.code, about: advised.about, figures: { ...advised.figures } } : null,
+    }];
+  });
+}
+
+/** The evidence with the sampling it would cost: each zone's mean of one measure within its margin, at the estate's assumed spread. */
+async function evidenceRows(access: Access, rows: ZoneEvidence[], ground: BlockVines): Promise<EvidenceRow[]> {
+  const measure = await MeasureRecord.query().findOne({ estateId: access.estateId, code: 'brix' });
+  const bearing = ground.states.filter((state) => isBearing(state)).length;
+  return rows.map((row) => {
+    const vines = Math.max(2, Math.round(bearing / row.k));
+    const each = measure && measure.marginKind === 'absolute' && measure.spreadKind === 'sd' ? sampleSize({ spread: measure.spreadValue, margin: measure.margin, confidence: measure.confidence, populationSize: vines, minimum: 5 }).n : null;
+    const { k, varianceExplained, silhouette, calinskiHarabasz, stability, gap, score, patches, smallestZoneHa } = row;
+    return { k, varianceExplained, silhouette, calinskiHarabasz, stability, gap, score, patches, smallestZoneHa, samples: each === null ? null : each * k, hours: each === null || !measure ? null : (each * k * measure.secondsPerSample) / 3600 };
+  });
+}
+
+/** Zones as they are kept: from the zones table, traced when the labels last changed. */
+export async function keptZones(access: Access, zoning: Zoning): Promise<ZoneView[]> {
+  const rows = await Zone.query().where({ estateId: access.estateId, zoningId: zoning.id }).orderBy('number').select('zones.*', asGeoJson('geometry').as('geometry'));
+  return rows.map((row) => {
+    const statistics = row.statistics as Pick<TracedZone, 'doubtfulShare' | 'patches' | 'layers'>;
+    return {
+      id: row.id,
+      number: row.number,
+      name: row.name,
+      colour: row.colour,
+      areaM2: row.areaM2,
+      vines: row.vineCount,
+      missing: row.missingCount,
+      doubtfulShare: statistics.doubtfulShare ?? null,
+      patches: statistics.patches ?? 1,
+      layers: [...(statistics.layers ?? [])],
+      geometry: row.geometry as MultiPolygon as ZoneView['geometry'],
+    };
+  });
+}
+
+function proposedZones(stored: StoredCandidate, ground: BlockVines, candidate: ZoningCandidate, zoning: Zoning): ZoneView[] {
+  const zoneOf = zonesOfVines(ground, { labels: candidate.labels, gridKey: zoning.gridKey });
+  return stored.zones
+    .filter((zone) => zone.polygonsLonLat !== null)
+    .map((zone) => ({ id: null, number: zone.number, name: '', colour: null, areaM2: zone.areaM2, ...countVines(ground, zoneOf, zone.number), doubtfulShare: zone.doubtfulShare, patches: zone.patches, layers: [...zone.layers], geometry: { type: 'MultiPolygon', coordinates: zone.polygonsLonLat as unknown as ZoneView['geometry']['coordinates'] } }));
+}
+
+export function countVines(ground: BlockVines, zoneOf: Uint8Array, zone: number): { vines: number; missing: number } {
+  let vines = 0;
+  let missing = 0;
+  zoneOf.forEach((of, vine) => {
+    if (of !== zone) return;
+    vines += 1;
+    const state = ground.states[vine];
+    if (state === 'missing' || state === 'dead') missing += 1;
+  });
+  return { vines, missing };
+}
+
+/** Labels of a zoning or of one of its candidates, a byte a cell, for small pictures of the block. */
+export async function readLabels(access: Access, zoningId: string, zoneCount: number | null): Promise<{ labels: Uint8Array; gridKey: string }> {
+  const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  if (zoneCount === null && zoning.labels !== null) return { labels: decodeLabels(zoning.labels), gridKey: zoning.gridKey };
+  const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: zoneCount ?? zoning.advisedZones ?? 1 }).throwIfNotFound();
+  return { labels: decodeLabels(candidate.labels), gridKey: zoning.gridKey };
+}

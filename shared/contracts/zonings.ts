@@ -1,0 +1,138 @@
+import { z } from 'zod';
+import { areaGeometry, id, lineGeometry, multiPolygonGeometry, shortName } from './common.ts';
+
+const weight = z.number().min(0).max(10);
+const ordinal = z.number().int().min(-10_000).max(100_000);
+const zoneNumber = z.number().int().min(1).max(60);
+
+export const zoningOptions = z.object({
+  layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })).min(1, 'Choose at least one layer.').max(20),
+  zones: z.union([z.literal('advise'), z.number().int().min(1).max(6)]).default('advise'),
+  standardise: z.enum(['plain', 'robust']).default('plain'),
+  smoothingM: z.number().min(0).max(50).default(3),
+  smallestPatchHa: z.number().min(0).max(5).default(0.05),
+  principalComponents: z.boolean().default(false),
+});
+export type ZoningRequestOptions = z.infer<typeof zoningOptions>;
+
+export const newZoning = zoningOptions.extend({ name: z.string().trim().max(80).default(''), seed: z.number().int().min(0).max(4_294_967_295).default(1) });
+export type NewZoning = z.infer<typeof newZoning>;
+
+export const zoningStates = ['running', 'proposed', 'draft', 'live', 'retired', 'failed'] as const;
+
+export const zoningLine = z.object({
+  id,
+  blockId: id,
+  number: z.number().int(),
+  name: z.string(),
+  state: z.enum(zoningStates),
+  verdict: z.enum(['one', 'test', 'several']).nullable(),
+  advisedZones: z.number().int().nullable(),
+  chosenZones: z.number().int().nullable(),
+  seed: z.number(),
+  revision: z.number().int(),
+  createdBy: z.string().nullable(),
+  createdAt: z.string(),
+  publishedAt: z.string().nullable(),
+  jobId: id.nullable(),
+});
+export type ZoningLine = z.infer<typeof zoningLine>;
+
+export const zoneLayerStats = z.object({ layerId: z.string(), n: z.number(), mean: z.number().nullable(), sd: z.number().nullable() });
+
+export const zoneView = z.object({
+  /** Null for a zone of a proposal that nobody kept yet. */
+  id: id.nullable(),
+  number: zoneNumber,
+  name: z.string(),
+  colour: z.string().nullable(),
+  areaM2: z.number(),
+  vines: z.number().int(),
+  missing: z.number().int(),
+  doubtfulShare: z.number().nullable(),
+  patches: z.number().int(),
+  layers: z.array(zoneLayerStats),
+  geometry: multiPolygonGeometry,
+});
+export type ZoneView = z.infer<typeof zoneView>;
+
+export const evidenceRow = z.object({
+  k: z.number().int(),
+  varianceExplained: z.number(),
+  silhouette: z.number().nullable(),
+  calinskiHarabasz: z.number().nullable(),
+  stability: z.number().nullable(),
+  gap: z.number().nullable(),
+  score: z.number().nullable(),
+  patches: z.number().int(),
+  smallestZoneHa: z.number(),
+  /** Samples of one measure (°Brix where it is kept) that each zone would need, and the hours of a round. */
+  samples: z.number().int().nullable(),
+  hours: z.number().nullable(),
+});
+export type EvidenceRow = z.infer<typeof evidenceRow>;
+
+const figures = z.record(z.string(), z.number().nullable());
+const reason = z.object({ code: z.string(), about: z.string().nullable(), figures });
+
+export const zoningView = z.object({
+  ...zoningLine.shape,
+  blockName: z.string(),
+  options: zoningOptions,
+  engineVersion: z.string(),
+  layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),
+  isJudged: z.boolean(),
+  reasons: z.array(reason),
+  alsoOffer: z.array(z.number().int()),
+  evidence: z.array(evidenceRow),
+  differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),
+  warnings: z.array(reason),
+  /** Number of zones that `zones` shows. */
+  shown: z.number().int(),
+  zones: z.array(zoneView),
+  problem: z.string().nullable(),
+});
+export type ZoningView = z.infer<typeof zoningView>;
+
+export const zoningChange = z.object({ name: z.string().trim().max(80), chosenZones: z.number().int().min(1).max(6) }).partial();
+
+const rowPart = z.object({ rowId: id, from: ordinal.nullable().default(null), to: ordinal.nullable().default(null) });
+
+/** What the manager's hand can do; the server turns rows into ground and keeps the outcome as an ordered edit. */
+export const zoneOperation = z.discriminatedUnion('kind', [
+  z.object({ kind: z.literal('merge'), zones: z.array(zoneNumber).min(1), into: zoneNumber }),
+  z.object({ kind: z.literal('split'), zone: zoneNumber, line: lineGeometry }),
+  z.object({ kind: z.literal('splitAlongRow'), zone: zoneNumber, rowId: id }),
+  z.object({ kind: z.literal('giveRows'), toZone: zoneNumber, rows: z.array(rowPart).min(1).max(2000) }),
+  z.object({ kind: z.literal('giveArea'), toZone: zoneNumber, area: areaGeometry }),
+  z.object({ kind: z.literal('rename'), zone: zoneNumber, name: shortName.nullable() }),
+  z.object({ kind: z.literal('renumber'), numbers: z.array(z.object({ from: zoneNumber, to: zoneNumber })).min(1) }),
+  z.object({ kind: z.literal('recolour'), zone: zoneNumber, colour: z.string().regex(/^#[0-9a-fA-F]{6}$/).nullable() }),
+  z.object({ kind: z.literal('snap'), mode: z.enum(['wholeRow', 'partRow']), shortestRunM: z.number().min(1).max(500).default(20) }),
+  z.object({ kind: z.literal('clean'), smallestPatchHa: z.number().min(0).max(5) }),
+]);
+export type ZoneOperation = z.infer<typeof zoneOperation>;
+
+export const zoneEditRequest = z.object({ operation: zoneOperation, reason: z.string().trim().max(400).default(''), revision: z.number().int() });
+export const revisionOnly = z.object({ revision: z.number().int() });
+
+export const zoneEditLine = z.object({ sequence: z.number().int(), operation: z.unknown(), reason: z.string(), undone: z.boolean(), author: z.string().nullable(), at: z.string() });
+export type ZoneEditLine = z.infer<typeof zoneEditLine>;
+
+export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int() });
+
+/** What publishing would touch. */
+export const publishEffects = z.object({
+  replaces: z.number().int().nullable(),
+  readingsMoved: z.number().int(),
+  readingsOutside: z.number().int(),
+  vinesMoved: z.number().int(),
+  openRounds: z.array(z.object({ id, onDate: z.string(), people: z.array(z.string()) })),
+  plans: z.number().int(),
+  lots: z.array(z.object({ id, name: z.string(), vinesMoved: z.number().int() })),
+  underFloor: z.array(z.object({ zone: zoneNumber, sampled: z.number().int(), floor: z.number().int() })),
+});
+export type PublishEffects = z.infer<typeof publishEffects>;
+
+export const zoningComparison = z.object({ vines: z.number().int(), vinesMoved: z.number().int(), adjustedRand: z.number(), pairs: z.array(z.object({ from: z.number().int(), to: z.number().int(), vines: z.number().int() })) });
+export type ZoningComparison = z.infer<typeof zoningComparison>;

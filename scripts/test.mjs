@@ -9,7 +9,7 @@ import { ensureBuilt } from './build.mjs';
 import { inCheckout, npmProgram, root } from './checkout.mjs';
 import { startTestCluster } from './postgres/testCluster.mjs';
 import { CommandFailed, runCommand } from './process/runCommand.mjs';
-import { untilStopped } from './process/stopSignals.mjs';
+import { runUntilStopped } from './process/runUntilStopped.mjs';
 import { Problem, runMain, say } from './progress.mjs';
 import { setUp } from './setup.mjs';
 import { closingLines, countRun } from './testSummary.mjs';
@@ -41,17 +41,17 @@ async function runChecks() {
   return (await Promise.all(wanted.map(({ name, command }) => failureOf(name, () => runCommand(npmProgram(command[0]), command[1]))))).flat();
 }
 
-/** Runs vitest in a process group of its own, which `stop` ends; resolves to whether it failed. */
-async function runVitest(filter, { env, reportFile, resources }) {
+/** Runs vitest in a process group of its own; resolves to whether it failed. */
+async function runVitest(filter, { env, reportFile, keep }) {
   say('Running the tests …');
   const args = [npmProgram('vitest'), 'run', '--reporter=default', '--reporter=json', `--outputFile.json=${reportFile}`, ...filter];
   const child = spawn(process.execPath, args, { cwd: root, env, detached: true, stdio: ['ignore', 'inherit', 'inherit'] });
   const ended = once(child, 'exit');
-  const stop = () => endGroup(child, ended);
-  resources.push({ stop });
+  const close = () => endGroup(child, ended);
+  keep({ close });
   const timer = setTimeout(() => {
     say(`The tests took longer than ${longestRunMs / 60_000} minutes and are stopped.`);
-    void stop();
+    void close();
   }, longestRunMs);
   const [code] = await ended;
   clearTimeout(timer);
@@ -67,36 +67,31 @@ async function endGroup(child, ended) {
   clearTimeout(timer);
 }
 
-/** Sets up, runs everything that is asked for; resolves to counts and the names of failed checks. */
-async function runAll(filter, { workFolder, resources }) {
+/** Sets up and runs everything that is asked for; resolves to counts and the names of failed checks. */
+async function runAll(filter, { workFolder, keep }) {
   await setUp({ database: true, browser: true });
   const failedChecks = await failureOf('build', () => ensureBuilt());
   if (filter.length === 0) failedChecks.push(...(await runChecks()));
-  const server = process.env.PATCHROW_TEST_DATABASE ? null : await startTestCluster();
-  if (server !== null) resources.push(server);
+  const existing = process.env.PATCHROW_TEST_DATABASE;
+  const { url } = existing ? { url: existing } : await keep(startTestCluster());
   const reportFile = path.join(workFolder, 'report.json');
-  const env = { ...process.env, NODE_ENV: 'test', PATCHROW_TEST_DATABASE: server?.url ?? process.env.PATCHROW_TEST_DATABASE };
+  const env = { ...process.env, NODE_ENV: 'test', PATCHROW_TEST_DATABASE: url };
   delete env.DATABASE_URL; // The tests never touch a real database.
-  const vitestFailed = await runVitest(filter, { env, reportFile, resources });
+  const vitestFailed = await runVitest(filter, { env, reportFile, keep });
   const report = existsSync(reportFile) ? JSON.parse(readFileSync(reportFile, 'utf8')) : null;
   return { counts: countRun({ report, vitestFailed, failedChecks }), failedChecks };
 }
 
 await runMain(async () => {
   const startedAt = Date.now();
-  const resources = [];
   const workFolder = mkdtempSync(path.join(os.tmpdir(), 'patchrow-run-'));
-  const stopped = untilStopped({ onSecondSignal: () => process.exit(1) });
+  process.exitCode = 1;
   try {
-    const result = await Promise.race([runAll(process.argv.slice(2), { workFolder, resources }), stopped.then(() => null)]);
-    if (result === null) {
-      process.exitCode = 1;
-      return;
-    }
+    const result = await runUntilStopped((keep) => runAll(process.argv.slice(2), { workFolder, keep }));
+    if (result === undefined) return;
     console.log(closingLines({ ...result, seconds: (Date.now() - startedAt) / 1000 }).join('\n'));
-    if (result.counts.failed > 0 || result.counts.passed === 0) process.exitCode = 1;
+    if (result.counts.failed === 0 && result.counts.passed > 0) process.exitCode = 0;
   } finally {
-    for (const resource of resources.reverse()) await resource.stop();
     rmSync(workFolder, { recursive: true, force: true });
   }
 });

@@ -1,1 +1,1 @@
-export function startTestCluster(): Promise<{ url: string; stop(): Promise<void> }>;
+export function startTestCluster(): Promise<{ url: string; close(): Promise<void> }>;

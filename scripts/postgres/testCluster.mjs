@@ -30,7 +30,7 @@ async function clearLeftovers({ bin, user }) {
   }
 }
 
-/** Starts a cluster in a temporary folder. Resolves to { url, stop }; it is stopped at the exit of this process too. */
+/** Starts a cluster in a temporary folder. Resolves to { url, close }; it is stopped at the exit of this process too. */
 export async function startTestCluster() {
   const found = usablePostgres();
   if (found === undefined) throw new Problem('PostgreSQL with PostGIS is not installed. "npm test" installs it.');
@@ -50,7 +50,7 @@ export async function startTestCluster() {
   await startCluster({ ...cluster, port, settings });
   return {
     url: `postgres://${superuser}@127.0.0.1:${port}/postgres`,
-    async stop() {
+    async close() {
       process.off('exit', stopAtExit);
       await stopCluster({ ...cluster, mode: 'immediate' });
       rmSync(folder, { recursive: true, force: true });

@@ -10,7 +10,7 @@ const keptLogBytes = 5_000_000;
 const preload = ['--import', new URL('./exitWithParent.mjs', import.meta.url).href];
 
 /** The end of a log file. */
-export const logTail = (file, lines = 20) => readFileSync(file, 'utf8').trim().split('\n').slice(-lines).join('\n');
+const logTail = (file, lines = 20) => readFileSync(file, 'utf8').trim().split('\n').slice(-lines).join('\n');
 
 /** Opens a log for appending; one that has grown large starts anew. */
 function openLog(file) {
@@ -33,10 +33,14 @@ export function startService({ name, args, env, logFile = null }) {
   const isRunning = () => child.exitCode === null && child.signalCode === null;
   return {
     name,
-    ended,
     isRunning,
+    /** Waits for an end that nobody asked for, which is a fault. */
+    async untilFault() {
+      const { code, signal } = await ended;
+      throw new Problem(`The ${name} ended (${signal ?? `exit code ${code}`}).${logFile === null ? '' : `\n${logTail(logFile)}`}`);
+    },
     /** Asks the program to stop; after ten seconds its whole group is killed. */
-    async stop() {
+    async close() {
       if (!isRunning()) return;
       child.kill('SIGTERM');
       const timer = setTimeout(() => killGroup(child.pid), stopWithinMs);

@@ -23,12 +23,12 @@ const schemaSources = ['migrations', 'server/db.ts', 'server/jobs/queue.ts', 'sh
  */
 export default async function setUp(project: TestProject): Promise<() => Promise<void>> {
   const existing = process.env.PATCHROW_TEST_DATABASE;
-  const server = existing ? { url: existing, stop: () => Promise.resolve() } : await startTestCluster();
+  const server = existing ? { url: existing, close: () => Promise.resolve() } : await startTestCluster();
   const templateDatabase = `patchrow_template_${hashOf(schemaSources)}`;
   await makeTemplate(server.url, templateDatabase);
   project.provide('testServerUrl', server.url);
   project.provide('templateDatabase', templateDatabase);
-  return () => server.stop();
+  return () => server.close();
 }
 
 /** Two projects may start at once on the same server: the first makes the template, the second waits and finds it. */

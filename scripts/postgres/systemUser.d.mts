@@ -1,0 +1,3 @@
+import type { ServerUser } from './cluster.mjs';
+
+export function serverUser(existingFolder?: string): Promise<ServerUser>;

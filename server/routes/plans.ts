@@ -5,7 +5,7 @@ import { newPlan, planChange, planRedraw } from '../../shared/contracts/plans.ts
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { exportPlan } from '../services/plans/exportPlan.ts';
 import { planBasisOf } from '../services/plans/planBasis.ts';
-import { listPlans, viewPlan } from '../services/plans/viewPlan.ts';
+import { listPlans, plannableZonings, viewPlan } from '../services/plans/viewPlan.ts';
 import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
 
 const filter = z.object({ block: id.optional() });
@@ -29,7 +29,7 @@ export function planRoutes(): Router {
   router.get('/plans', read, async (request, response) => {
     const { block } = filter.parse(request.query);
     const items = await listPlans(accessOf(request), block ? { blockId: block } : {});
-    response.json({ items, total: items.length });
+    response.json({ items, total: items.length, zonings: await plannableZonings(accessOf(request)) });
   });
   router.get('/plans/:planId', read, async (request, response) => {
     response.json(await viewPlan(accessOf(request), idParam(request, 'planId')));

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { postColour } from './blocks.ts';
 import { id, shortName } from './common.ts';
 import { confidence, marginKind } from './measures.ts';
 
@@ -152,6 +153,17 @@ export const planView = planSummary.extend({
   draw: z.array(zoneDrawFacts),
   walk: walkFacts.nullable(),
   targets: z.array(drawnTarget),
+  /** Zones along the rows, for the row strip. */
+  runs: z.array(z.object({ rowId: id, runs: z.array(z.object({ zone: z.number().int(), from: z.number().int(), to: z.number().int() })) })),
+  startPostColour: postColour,
+  endPostColour: postColour,
   oldDraws: z.array(oldDraw),
 });
 export type PlanView = z.infer<typeof planView>;
+
+export const plannableZoning = z.object({ id, number: z.number().int(), blockId: id, blockName: z.string() });
+export type PlannableZoning = z.infer<typeof plannableZoning>;
+
+/** Plans of the estate, and the zones in force that a plan can be made on. */
+export const planList = z.object({ items: z.array(planSummary), total: z.number().int(), zonings: z.array(plannableZoning) });
+export type PlanList = z.infer<typeof planList>;

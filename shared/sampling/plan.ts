@@ -5,7 +5,7 @@ import { planForBudget, type Budget, type BudgetAnswer } from './budget.ts';
 import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
 import { pilotQuotas } from './pilot.ts';
 import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
-import { tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
+import { marginLadder, tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
 
 /**
  * A plan from what is known of the ground (basis) and what a person chooses. The browser calls this while a slider
@@ -35,9 +35,15 @@ export function answerBudget(basis: PlanBasis, choices: PlanChoices, budget: Bud
   return planForBudget(questionOf(basis, choices), budget);
 }
 
+/** Odd, so that the margin asked for is itself a step. */
+const LADDER_STEPS = 41;
+const LADDER_REACH = 3;
+
 /** Vines of the whole plan against the margin of one measure, for each confidence on offer. */
 export function answerTradeOff(basis: PlanBasis, choices: PlanChoices, code: string): TradeOffCurve[] {
-  return tradeOffCurves(questionOf(basis, choices), code, { confidences });
+  const question = questionOf(basis, choices);
+  const margin = question.measures.find((measure) => measure.code === code)?.margin.value ?? 1;
+  return tradeOffCurves(question, code, { confidences, margins: marginLadder(margin / LADDER_REACH, margin * LADDER_REACH, LADDER_STEPS) });
 }
 
 /** The calculation's own form of a plan. Throws AnalysisError for a measure the estate does not have. */

@@ -12,5 +12,9 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   mail: () => import('../views/people/MailView.vue'),
   settings: () => import('../views/people/SettingsView.vue'),
   history: () => import('../views/people/HistoryView.vue'),
+  sampling: () => import('../views/sampling/SamplingView.vue'),
+  planNew: () => import('../views/sampling/PlanView.vue'),
+  plan: () => import('../views/sampling/PlanView.vue'),
+  targets: () => import('../views/sampling/TargetsView.vue'),
   notFound: () => import('../views/door/NotFoundView.vue'),
 };

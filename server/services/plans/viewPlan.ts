@@ -1,9 +1,11 @@
 import type { Point } from 'geojson';
 import type { z } from 'zod';
-import { planChoices, type PlanBasis, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import { planChoices, type PlanBasis, type PlannableZoning, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
 import type { Access } from '../../access/access.ts';
-import { loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
+import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { Block } from '../../models/Block.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import { Person } from '../../models/Person.ts';
@@ -37,6 +39,14 @@ export async function listPlans(access: Access, filter: { zoningId?: string; blo
   return summariesOf(access, plans);
 }
 
+/** Zones that a plan can be made on: those in force, one a block. */
+export async function plannableZonings(access: Access): Promise<PlannableZoning[]> {
+  const { estateId } = access;
+  const zonings = await Zoning.query().where({ estateId, state: 'live' }).whereNotNull('labels').select('id', 'number', 'name', 'blockId');
+  const blocks = await Block.query().where({ estateId }).whereNull('retiredAt').findByIds(zonings.map(({ blockId }) => blockId)).orderBy('name').select('id', 'name');
+  return blocks.flatMap((block) => zonings.filter(({ blockId }) => blockId === block.id).map(({ id, number }) => ({ id, number, blockId: block.id, blockName: block.name })));
+}
+
 export async function viewPlan(access: Access, planId: string): Promise<PlanView> {
   const plan = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
   const [summary] = await summariesOf(access, [plan]);
@@ -61,8 +71,17 @@ export async function viewPlan(access: Access, planId: string): Promise<PlanView
         measures: target.measureCodes, position: [lon, lat] as [number, number],
       };
     }),
+    runs: await runsOf(access.estateId, plan.zoningId, ground),
+    startPostColour: ground.block.startPostColour,
+    endPostColour: ground.block.endPostColour,
     oldDraws: draws.map(({ at, by, reason, seed, targets: old }) => ({ at, by: people.find(({ id }) => id === by)?.name ?? '', reason, seed, vines: old.length })),
   };
+}
+
+async function runsOf(estateId: string, zoningId: string, ground: BlockVines): Promise<PlanView['runs']> {
+  const zoning = await Zoning.query().findOne({ estateId, id: zoningId }).throwIfNotFound();
+  const byRow = groupBy(rowRuns(ground.vines, zonesOfVines(ground, zoning)), ({ rowIndex }) => rowIndex);
+  return [...byRow.entries()].map(([index, runs]) => ({ rowId: ground.stored[index]!.id, runs: runs.map(({ label, fromOrdinal, toOrdinal }) => ({ zone: label, from: fromOrdinal, to: toOrdinal })) }));
 }
 
 /** A vine as people in the block name it. */

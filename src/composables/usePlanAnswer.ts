@@ -1,0 +1,37 @@
+import { computed, type ComputedRef, type Ref } from 'vue';
+import { AnalysisError } from '../../shared/analysis/analysisError.ts';
+import type { PlanBasis, PlanChoices } from '../../shared/contracts/plans.ts';
+import { answerBudget, answerPlan, answerTradeOff, type PlanAnswer } from '../../shared/sampling/plan.ts';
+import type { BudgetAnswer } from '../../shared/sampling/budget.ts';
+import type { TradeOffCurve } from '../../shared/sampling/tradeOff.ts';
+
+export interface LivePlan {
+  answer: ComputedRef<PlanAnswer | null>;
+  /** Why there is no answer, in the calculation's own words. */
+  refusal: ComputedRef<string | null>;
+  curves: (code: string) => TradeOffCurve[];
+  forHours: (hours: number) => BudgetAnswer | null;
+}
+
+/** The plan's answer while somebody moves a margin: the same calculation as the server's, in the browser. */
+export function usePlanAnswer(basis: Ref<PlanBasis | null>, choices: Ref<PlanChoices>): LivePlan {
+  const outcome = computed(() => {
+    if (basis.value === null || choices.value.measures.length === 0) return { answer: null, refusal: null };
+    return attempt(() => answerPlan(basis.value!, choices.value));
+  });
+  return {
+    answer: computed(() => outcome.value.answer),
+    refusal: computed(() => outcome.value.refusal),
+    curves: (code) => (basis.value === null ? [] : (attempt(() => answerTradeOff(basis.value!, choices.value, code)).answer ?? [])),
+    forHours: (hours) => (basis.value === null || choices.value.measures.length === 0 ? null : attempt(() => answerBudget(basis.value!, choices.value, { kind: 'hours', value: hours })).answer),
+  };
+}
+
+function attempt<Answer>(work: () => Answer): { answer: Answer | null; refusal: string | null } {
+  try {
+    return { answer: work(), refusal: null };
+  } catch (error) {
+    if (!(error instanceof AnalysisError)) throw error;
+    return { answer: null, refusal: error.message };
+  }
+}

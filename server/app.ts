@@ -15,6 +15,7 @@ import { log } from './log.ts';
 import { blockRoutes } from './routes/blocks.ts';
 import { describedApi } from './routes/openapi.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
+import { harvestRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
 import { layerRoutes } from './routes/layers.ts';
@@ -92,6 +93,7 @@ function makeEstateApi(config: Config): Router {
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
   router.use(planRoutes(), roundRoutes({ publicUrl }));
+  router.use(harvestRoutes({ publicUrl }));
   return router;
 }
 

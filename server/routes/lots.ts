@@ -5,6 +5,7 @@ import { lotChange, lotParts, newLot, newScenario, newTank, tankChange } from '.
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { listTanks, lotsBoard } from '../services/lots/board.ts';
 import { changeLot, changeTank, confirmLot, copyScenario, createLot, createTank, deleteLot, setLotParts } from '../services/lots/changeLots.ts';
+import { blockRipening } from '../services/results/ripening.ts';
 import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
@@ -19,6 +20,9 @@ export function lotRoutes(): Router {
   router.get('/zonings/:zoningId/results', allow('results.see', 'read'), async (request, response) => {
     const { season } = resultsQuery.parse(request.query);
     response.json(await zoneResults(accessOf(request), idParam(request, 'zoningId'), season ? { seasonId: season } : {}));
+  });
+  router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
+    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId')));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {

@@ -2,6 +2,10 @@ import { z } from 'zod';
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
 import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
+import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
+import { newNotice } from '../../shared/contracts/notices.ts';
+import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
+import { newTicket, reviewView } from '../../shared/contracts/tickets.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
 import { blockLayerView, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
 import { newPlan, planBasis, planChange, planRedraw, planView } from '../../shared/contracts/plans.ts';
@@ -65,6 +69,21 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'Open, close or call off a round', body: roundChange },
   { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/acknowledge', summary: 'Note that a round was seen' },
   { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/results', summary: 'Means by zone, measure and day, with ranges and how many readings are missing', answer: resultsView },
+  { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/ripening', summary: 'Series by zone with change, trend and forecast', answer: ripeningView },
+  { method: 'get', path: '/api/estates/{estateId}/lots', summary: 'Lots of a scenario, zones with what is free, tanks', answer: lotsBoard },
+  { method: 'post', path: '/api/estates/{estateId}/lots', summary: 'Make a pick lot', body: newLot },
+  { method: 'patch', path: '/api/estates/{estateId}/lots/{lotId}', summary: 'Change name, wine, date or tank of a lot (If-Match)', body: lotChange },
+  { method: 'put', path: '/api/estates/{estateId}/lots/{lotId}/parts', summary: 'Set the zones of a lot, whole or by rows (If-Match)', body: lotParts },
+  { method: 'post', path: '/api/estates/{estateId}/lots/{lotId}/confirm', summary: 'Confirm a lot and its date (If-Match)' },
+  { method: 'post', path: '/api/estates/{estateId}/scenarios', summary: 'Copy the lots as a what-if', body: newScenario },
+  { method: 'post', path: '/api/estates/{estateId}/tanks', summary: 'Add a tank', body: newTank },
+  { method: 'patch', path: '/api/estates/{estateId}/tanks/{tankId}', summary: 'Change a tank', body: tankChange },
+  { method: 'get', path: '/api/estates/{estateId}/notices', summary: 'Pick notices, newest first' },
+  { method: 'post', path: '/api/estates/{estateId}/lots/{lotId}/notices', summary: 'Send the next pick notice of a confirmed lot', body: newNotice },
+  { method: 'post', path: '/api/estates/{estateId}/notices/{noticeId}/read', summary: 'Note that a notice was read' },
+  { method: 'post', path: '/api/estates/{estateId}/tickets', summary: 'Enter a scale ticket, or one that corrects another', body: newTicket },
+  { method: 'get', path: '/api/estates/{estateId}/review', summary: 'Forecast against scale, and whether zones mattered', answer: reviewView },
   { method: 'get', path: '/api/estates/{estateId}/jobs/{jobId}', summary: 'Progress of a job', answer: jobView },
 ];
 

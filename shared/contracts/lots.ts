@@ -36,11 +36,14 @@ export const lotZone = z.object({
   latest: z.object({ brix: figure.nullable(), ph: figure.nullable(), ta: figure.nullable(), on: z.string().nullable() }),
   freeShare: z.number(),
   freeTonnes: z.number(),
+  /** Rows that cross the zone, in order; `free` when none of its vines there is in a lot. */
+  rows: z.array(z.object({ id, label: z.string(), free: z.boolean() })),
   inLots: z.array(z.object({ lotId: id, lotName: z.string(), share: z.number() })),
 });
 export type LotZone = z.infer<typeof lotZone>;
 
-export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure });
+export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure, /** Rows of a part of a zone; null when all of it is in the lot. */ rowIds: z.array(id).nullable() });
+export type LotLine = z.infer<typeof lotLine>;
 
 export const lotSummary = z.object({
   areaHa: z.number(),

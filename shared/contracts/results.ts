@@ -45,3 +45,49 @@ export const resultsView = z.object({
   outside: z.number().int(),
 });
 export type ResultsView = z.infer<typeof resultsView>;
+
+const changeWord = z.enum(['higher', 'lower', 'notDistinguishable']);
+
+/** Change since the visit before: what the words on the screen come from. */
+export const visitChange = z.object({
+  from: z.string(),
+  /** True when mostly the same vines were read on both days. */
+  sameVines: z.boolean(),
+  value: z.number(),
+  halfWidth: z.number().nullable(),
+  word: changeWord,
+});
+export type VisitChange = z.infer<typeof visitChange>;
+
+const trendView = z.discriminatedUnion('kind', [
+  z.object({
+    kind: z.literal('trend'), visits: z.number().int(), firstDay: z.number(), lastDay: z.number(), intercept: z.number(), slope: z.number(), slopeStandardError: z.number(), slopeLower: z.number(), slopeUpper: z.number(),
+    word: changeWord, df: z.number(), residualSd: z.number(), rSquared: z.number().nullable(), meanDay: z.number(), meanValue: z.number(), daySpread: z.number(), confidence: z.number(),
+  }),
+  z.object({ kind: z.literal('refused'), reason: z.enum(['fewVisits', 'oneDay', 'mixedProtocols']), visits: z.number().int(), needed: z.number().int() }),
+]);
+
+/** One zone and measure through the season; `day` counts from 1 January 1970. */
+export const ripeningSeries = z.object({
+  zone: z.number().int(),
+  measure: z.string(),
+  points: z.array(z.object({ visit: z.string(), day: z.number().int(), value: z.number(), halfWidth: z.number().nullable(), n: z.number().int() })),
+  change: visitChange.nullable(),
+  trend: trendView,
+  /** A straight line runs ahead of fruit that slows down. */
+  bend: z.enum(['slowing', 'quickening', 'notDistinguishable']).nullable(),
+  /** Where the mean of one more visit would lie; empty while the trend is refused. */
+  forecast: z.array(z.object({ day: z.number().int(), value: z.number(), lower: z.number(), upper: z.number() })),
+  /** Spread between vines on the newest visit. */
+  sd: z.number().nullable(),
+});
+export type RipeningSeries = z.infer<typeof ripeningSeries>;
+
+export const ripeningView = resultsView.extend({
+  series: z.array(ripeningSeries),
+  /** How often the forecasts of this season beat "no change", and how often their band held, by measure. */
+  record: z.array(z.object({ measure: z.string(), n: z.number().int(), better: z.number().int(), held: z.number().int(), few: z.boolean() })),
+  /** Sum above 10 °C since the season began; null while no temperatures are kept. */
+  degreeDays: z.number().nullable(),
+});
+export type RipeningView = z.infer<typeof ripeningView>;

@@ -38,7 +38,13 @@ export function oneWayAnova(groups: readonly (readonly number[])[]): OneWayAnova
     throw new AnalysisError('too_few_groups', `Comparing groups needs at least 2 groups and more readings than groups; got ${n} readings in ${k} groups.`);
   }
   const origin = used[0]![0]!;
-  const summaries = used.map((group) => summarise(group.map((value) => value - origin)));
+  return compareMeans(used.map((group) => summarise(group.map((value) => value - origin))));
+}
+
+/** The same from n, mean and variance of each group, where the readings themselves are not at hand. */
+export function compareMeans(summaries: readonly { readonly n: number; readonly mean: number; readonly variance: number }[]): OneWayAnova {
+  const n = summaries.reduce((sum, group) => sum + group.n, 0);
+  const k = summaries.length;
   const grandMean = summaries.reduce((sum, group) => sum + group.n * group.mean, 0) / n;
   const ssBetween = summaries.reduce((sum, group) => sum + group.n * (group.mean - grandMean) ** 2, 0);
   const ssWithin = summaries.reduce((sum, group) => sum + (group.n > 1 ? (group.n - 1) * group.variance : 0), 0);

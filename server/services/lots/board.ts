@@ -39,6 +39,12 @@ export async function listTanks(access: Access): Promise<TankView[]> {
   return rows.map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill }));
 }
 
+/** All lots of a board's ground, as the board shows them. */
+export async function lotViews(access: Access, ground: BoardGround): Promise<LotView[]> {
+  const tanks = await listTanks(access);
+  return ground.lots.map((_, index) => lotView(ground, index, tanks));
+}
+
 function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZone {
   const zone = block.zones[index]!;
   const outlook = block.outlooks[index]!;
@@ -66,6 +72,7 @@ function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZon
     latest: { brix: latest('brix'), ph: latest('ph'), ta: latest('ta'), on: outlook.latestOn },
     freeShare,
     freeTonnes: freeShare * outlook.tonnes.value,
+    rows: rowsAcross(block, zone.number),
     inLots,
   };
 }
@@ -94,7 +101,8 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): LotView
     pickOn: lot.pickOn,
     tankId: lot.tankId,
     version: lot.version,
-    lines: shares.map(({ block, zone, outlook, vines, bearing, share }) => ({
+    lines: shares.map(({ block, zone, outlook, vines, bearing, share, rowIds }) => ({
+      rowIds,
       zoneId: zone.id,
       blockId: block.ground.block.id,
       blockName: block.ground.block.name,
@@ -118,6 +126,19 @@ function lotShares(block: BoardBlock, lot: number): LotShare[] {
     if (mine.length === 0) return [];
     const outlook = block.outlooks[index]!;
     const bearing = mine.filter((vine) => isBearing(block.ground.states[vine]!)).length;
-    return [{ block, zone, outlook, vines: mine.length, bearing, share: outlook.bearing > 0 ? bearing / outlook.bearing : 0 }];
+    return [{ block, zone, outlook, vines: mine.length, bearing, rowIds: mine.length === outlook.vines ? null : rowsOf(block, mine), share: outlook.bearing > 0 ? bearing / outlook.bearing : 0 }];
   });
+}
+
+/** Rows that the vines stand in, in order. */
+function rowsOf({ ground }: BoardBlock, vines: number[]): string[] {
+  return [...new Set(vines.map((vine) => ground.vines.row[vine]!))].map((row) => ground.stored[row]!.id);
+}
+
+function rowsAcross({ ground, zoneOf, lotOf }: BoardBlock, zone: number): LotZone['rows'] {
+  const isFree = new Map<number, boolean>();
+  zoneOf.forEach((of, vine) => {
+    if (of === zone) isFree.set(ground.vines.row[vine]!, (isFree.get(ground.vines.row[vine]!) ?? true) && lotOf[vine]! < 0);
+  });
+  return [...isFree].sort(([a], [b]) => a - b).map(([row, free]) => ({ id: ground.stored[row]!.id, label: ground.stored[row]!.label, free }));
 }

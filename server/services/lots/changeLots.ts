@@ -137,7 +137,7 @@ async function lockLot(trx: Transaction, access: Access, lotId: string, version:
 }
 
 /** A pick date inside an entry restriction or a pre-harvest interval is stopped, with the entry named. */
-async function requireNoPickRestriction(trx: Transaction, access: Access, lotId: string, pickOn: string): Promise<void> {
+export async function requireNoPickRestriction(trx: Transaction, access: Access, lotId: string, pickOn: string): Promise<void> {
   const clash = await EntryRestriction.query(trx)
     .where('entry_restrictions.estateId', access.estateId)
     .whereNull('liftedAt')

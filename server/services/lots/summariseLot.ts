@@ -17,6 +17,8 @@ export interface LotShare {
   vines: number;
   bearing: number;
   share: number;
+  /** Rows of a part; null when the whole zone is in the lot. */
+  rowIds: string[] | null;
 }
 
 type MeasuredCode = 'brix' | 'ph' | 'ta';

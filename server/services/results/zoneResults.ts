@@ -15,18 +15,38 @@ import { Zoning } from '../../models/Zoning.ts';
  * Readings belong to vines; which zone a vine is in follows from the zoning asked for, so history stays true when zones change.
  */
 export async function zoneResults(access: Access, zoningId: string, options: { seasonId?: string } = {}): Promise<ResultsView> {
+  return viewResults(await loadZoneReadings(access, zoningId, options));
+}
+
+export interface ZoneReadings {
+  zoning: Zoning;
+  ground: BlockVines;
+  zones: Pick<Zone, 'id' | 'number' | 'name' | 'areaM2'>[];
+  zoneOf: Uint8Array;
+  /** Measures that were read at all. */
+  measures: MeasureRecord[];
+  readings: ZonedReading[];
+  /** Bearing vines by zone number. */
+  bearing: Map<number, number>;
+}
+
+/** Everything the results of a zoning are computed from. */
+export async function loadZoneReadings(access: Access, zoningId: string, options: { seasonId?: string } = {}): Promise<ZoneReadings> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
   const zoneOf = zonesOfVines(ground, zoning);
   const zones = await Zone.query().where({ estateId: access.estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'areaM2');
   const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
   const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId });
-  const bearing = countBearing(ground, zoneOf);
   const measured = measures.filter((measure) => readings.some((reading) => reading.measureCode === measure.code));
+  return { zoning, ground, zones, zoneOf, measures: measured, readings, bearing: countBearing(ground, zoneOf) };
+}
+
+export function viewResults({ zoning, ground, zones, zoneOf, measures: measured, readings, bearing }: ZoneReadings): ResultsView {
   const inZones = readings.filter((reading) => reading.zone > 0);
   const values = measured.flatMap((measure) => resultsOf(measure, inZones.filter((reading) => reading.measureCode === measure.code), bearing));
   return {
-    zoningId,
+    zoningId: zoning.id,
     blockId: zoning.blockId,
     blockName: ground.block.name,
     zoningNumber: zoning.number,

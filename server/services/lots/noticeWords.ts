@@ -1,0 +1,61 @@
+import type { NoticeBody, NoticeDifference } from '../../../shared/contracts/notices.ts';
+import { noticeTexts } from '../../mail/noticeTexts.ts';
+
+type Texts = (typeof noticeTexts)[keyof typeof noticeTexts];
+
+/** What differs between a notice and the one that it replaces, in the order people need it. */
+export function differencesBetween(before: NoticeBody, after: NoticeBody): NoticeDifference[] {
+  const told = { before: factsOf(before), after: factsOf(after) };
+  return (['pickOn', 'fromTime', 'lotName', 'zones', 'tank', 'tonnes', 'note'] as const)
+    .filter((what) => told.before[what] !== told.after[what])
+    .map((what) => ({ what, before: told.before[what], after: told.after[what] }));
+}
+
+function factsOf({ pickOn, fromTime, lotName, zones, tank, tonnes, note }: NoticeBody): Record<NoticeDifference['what'], string> {
+  return {
+    pickOn,
+    fromTime,
+    lotName,
+    zones: zones.map((zone) => `${zone.blockName} ${zone.number}${zone.rows ? ` (${zone.rows.join(', ')})` : ''}`).join('; '),
+    tank: tank ?? '–',
+    tonnes: tonnes === null ? '–' : tonnes.value.toFixed(1),
+    note: note === '' ? '–' : note,
+  };
+}
+
+/** Without what a reader may not see: crews pick, and are told neither tonnes nor tank. */
+export function withoutTonnes(body: NoticeBody): NoticeBody {
+  return { ...body, tonnes: null, tank: null };
+}
+
+export function withoutTonnesDifferences(differences: readonly NoticeDifference[]): NoticeDifference[] {
+  return differences.filter(({ what }) => what !== 'tonnes' && what !== 'tank');
+}
+
+/** The notice as plain text in the reader's language: what it replaces and what changed come first. */
+export function noticeText(body: NoticeBody, how: { language: string; replacesNumber: number | null; differences: readonly NoticeDifference[] }): string {
+  const texts: Texts = noticeTexts[how.language as keyof typeof noticeTexts] ?? noticeTexts.en;
+  const date = (day: string) => new Intl.DateTimeFormat(how.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+  const shown = (what: string, value: string) => (what === 'pickOn' ? date(value) : value);
+  const lines = [
+    ...(how.replacesNumber === null ? [] : [fill(texts.replaces, { number: how.replacesNumber })]),
+    ...(how.differences.length === 0 ? [] : [texts.changed, ...how.differences.map(({ what, before, after }) => `- ${fill(texts.was, { what: wordOf(texts, what), before: shown(what, before), after: shown(what, after) })}`), '']),
+    fill(texts.pick, { lot: body.lotName, date: date(body.pickOn), time: body.fromTime }),
+    fill(texts.zones, { zones: body.zones.map((zone) => `${zone.blockName} ${texts.zone} ${zone.number}${zone.rows ? `, ${fill(texts.rows, { rows: zone.rows.join(', ') })}` : ''}`).join('; ') }),
+    ...(body.tonnes === null ? [] : [fill(texts.tonnes, { value: body.tonnes.value.toFixed(1), half: (body.tonnes.halfWidth ?? 0).toFixed(1) })]),
+    ...(body.tank === null ? [] : [fill(texts.tank, { tank: body.tank })]),
+    ...(body.note === '' ? [] : [body.note]),
+    '',
+    texts.caution,
+  ];
+  return lines.join('\n');
+}
+
+function wordOf(texts: Texts, what: NoticeDifference['what']): string {
+  const words = { pickOn: texts.pickOn, fromTime: texts.fromTime, lotName: texts.lotName, zones: texts.zonesWord, tank: texts.tankWord, tonnes: texts.tonnesWord, note: texts.noteWord };
+  return words[what];
+}
+
+function fill(template: string, facts: Record<string, string | number>): string {
+  return template.replace(/\{(\w+)\}/g, (place, key: string) => String(facts[key] ?? place));
+}

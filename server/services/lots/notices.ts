@@ -1,0 +1,140 @@
+import type { Transaction } from 'objection';
+import { may } from '../../../shared/catalog/permissions.ts';
+import type { Role } from '../../../shared/catalog/roles.ts';
+import type { LotView } from '../../../shared/contracts/lots.ts';
+import type { NewNotice, NoticeBody, NoticeView } from '../../../shared/contracts/notices.ts';
+import type { Access } from '../../access/access.ts';
+import { Missing, Unusable } from '../../errors.ts';
+import { queueMail } from '../../mail/outbox.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Lot } from '../../models/Lot.ts';
+import { Membership } from '../../models/Membership.ts';
+import { NoticeReader } from '../../models/NoticeReader.ts';
+import { Person } from '../../models/Person.ts';
+import { PickNotice } from '../../models/PickNotice.ts';
+import { Scenario } from '../../models/Scenario.ts';
+import { lotsBoard } from './board.ts';
+import { requireNoPickRestriction } from './changeLots.ts';
+import { differencesBetween, noticeText, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
+
+interface Recipient {
+  person: Person;
+  seesLots: boolean;
+}
+
+/** Sends the notice of a confirmed lot: it gets the next number, and the one before it of the same lot is void from then on. */
+export async function sendNotice(access: Access, lotId: string, input: NewNotice, options: { publicUrl: string; now: Date }): Promise<{ id: string; number: number }> {
+  const { estateId } = access;
+  const lot = await Lot.query().findOne({ estateId, id: lotId }).throwIfNotFound();
+  const scenario = await Scenario.query().findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
+  if (!scenario.isLive) throw new Unusable('whatIf', 'A notice is sent from the lots in force, not from a what-if.');
+  if (lot.state === 'draft' || lot.pickOn === null) throw new Unusable('notConfirmed', `Confirm the lot "${lot.name}" and its date first; then send the notice.`);
+  const board = await lotsBoard(access, { scenarioId: scenario.id, today: options.now.toISOString().slice(0, 10) });
+  const body = bodyOf(board.lots.find((one) => one.id === lotId)!, { input, pickOn: lot.pickOn, labels: new Map(board.zones.flatMap((zone) => zone.rows.map((row) => [row.id, row.label]))), tank: board.tanks.find((tank) => tank.id === lot.tankId)?.name ?? null });
+  const recipients = await recipientsOf(estateId, input.people);
+  return PickNotice.transaction(async (trx) => {
+    // Numbers run without a gap or a double: one notice at a time in an estate.
+    const estate = await Estate.query(trx).findById(estateId).forUpdate().throwIfNotFound();
+    await requireNoPickRestriction(trx, access, lotId, body.pickOn);
+    const before = await PickNotice.query(trx).where({ estateId, lotId }).whereNull('voidAt').orderBy('number', 'desc').first();
+    const newest = await PickNotice.query(trx).where({ estateId }).max('number as number').first();
+    if (before) await before.$query(trx).patch({ voidAt: options.now });
+    const notice = await PickNotice.query(trx).insert({ estateId, lotId, number: (newest?.number ?? 0) + 1, replacesNumber: before?.number ?? null, body, sentBy: access.personId, sentAt: options.now });
+    await NoticeReader.query(trx).insert(recipients.map(({ person }) => ({ noticeId: notice.id, personId: person.id })));
+    await mailNotice(trx, { access, estateName: estate.name, notice, body, before: before ? (before.body as NoticeBody) : null, recipients, publicUrl: options.publicUrl });
+    await writeAudit(trx, access, { action: 'notices.send', subjectType: 'notice', subjectId: notice.id, subjectName: `${lot.name} ${notice.number}`, after: { number: notice.number, replaces: before?.number ?? null, people: input.people.length } });
+    return { id: notice.id, number: notice.number };
+  });
+}
+
+function bodyOf(lot: LotView, facts: { input: NewNotice; pickOn: string; labels: Map<string, string>; tank: string | null }): NoticeBody {
+  return {
+    lotName: lot.name,
+    pickOn: facts.pickOn,
+    fromTime: facts.input.fromTime,
+    zones: lot.lines.map((line) => ({ blockName: line.blockName, number: line.number, name: line.name, rows: line.rowIds === null ? null : line.rowIds.map((id) => facts.labels.get(id) ?? '?') })),
+    tonnes: lot.summary.tonnes,
+    tank: facts.tank,
+    note: facts.input.note,
+  };
+}
+
+/** People with an open place in the estate, with their roles; the choice of who must know is made from these. */
+export async function noticePeople(access: Access): Promise<{ id: string; name: string; roles: Role[] }[]> {
+  const rows = await openPlaces(access.estateId);
+  const people = await Person.query().findByIds([...new Set(rows.map((row) => row.personId))]).orderBy('name').select('id', 'name');
+  return people.map(({ id, name }) => ({ id, name, roles: rows.filter((row) => row.personId === id).map((row) => row.role) })).filter(({ roles }) => may(roles, 'notices.acknowledge'));
+}
+
+async function openPlaces(estateId: string): Promise<{ personId: string; role: Role }[]> {
+  return Membership.query().where({ estateId }).whereNull('endedAt').whereRaw('starts_on <= current_date and (ends_on is null or ends_on >= current_date)').select('personId', 'role');
+}
+
+async function recipientsOf(estateId: string, ids: string[]): Promise<Recipient[]> {
+  const rows = await openPlaces(estateId);
+  const people = await Person.query().findByIds([...new Set(ids)]).select('id', 'name', 'email', 'language');
+  return [...new Set(ids)].map((id) => {
+    const roles = rows.filter((row) => row.personId === id).map((row) => row.role);
+    const person = people.find((one) => one.id === id);
+    if (!person || !may(roles, 'notices.acknowledge')) throw new Unusable('notAReader', `${person && roles.length > 0 ? person.name : 'Somebody chosen'} cannot be sent a notice in this estate. Choose people who work here.`);
+    return { person, seesLots: may(roles, 'lots.see', 'read') };
+  });
+}
+
+interface Mailing {
+  access: Access;
+  estateName: string;
+  notice: PickNotice;
+  body: NoticeBody;
+  before: NoticeBody | null;
+  recipients: Recipient[];
+  publicUrl: string;
+}
+
+async function mailNotice(trx: Transaction, { access, estateName, notice, body, before, recipients, publicUrl }: Mailing): Promise<void> {
+  const differences = before ? differencesBetween(before, body) : [];
+  for (const { person, seesLots } of recipients) {
+    if (person.email === null) continue;
+    const text = noticeText(seesLots ? body : withoutTonnes(body), { language: person.language, replacesNumber: notice.replacesNumber, differences: seesLots ? differences : withoutTonnesDifferences(differences) });
+    await queueMail(trx, {
+      estateId: access.estateId, kind: 'pickNotice', to: { address: person.email, name: person.name, language: person.language },
+      facts: { estate: estateName, number: notice.number, body: text, link: `${publicUrl}/e/${access.estateId}/pick-board?notice=${notice.number}` },
+    });
+  }
+}
+
+/** Notices, newest first. Who may not see lots gets those addressed to them, without tonnes and tank. */
+export async function listNotices(access: Access): Promise<NoticeView[]> {
+  const { estateId, personId } = access;
+  const seesLots = may(access.roles, 'lots.see', 'read');
+  const all = await PickNotice.query().where({ estateId }).orderBy('number', 'desc');
+  const readers = await NoticeReader.query().whereIn('noticeId', all.map((notice) => notice.id));
+  const people = await Person.query().findByIds([...new Set([...readers.map((reader) => reader.personId), ...all.map((notice) => notice.sentBy)])]).select('id', 'name');
+  const nameOf = (id: string) => people.find((person) => person.id === id)?.name ?? '';
+  const own = (notice: PickNotice) => readers.filter((reader) => reader.noticeId === notice.id);
+  return all
+    .filter((notice) => seesLots || own(notice).some((reader) => reader.personId === personId))
+    .map((notice) => {
+      const body = notice.body as NoticeBody;
+      const before = all.find((other) => other.number === notice.replacesNumber);
+      const differences = before ? differencesBetween(before.body as NoticeBody, body) : [];
+      return {
+        id: notice.id, number: notice.number, lotId: notice.lotId, replacesNumber: notice.replacesNumber, voidAt: notice.voidAt?.toISOString() ?? null, replacedBy: all.find((other) => other.replacesNumber === notice.number)?.number ?? null,
+        body: seesLots ? body : withoutTonnes(body), differences: seesLots ? differences : withoutTonnesDifferences(differences), sentBy: nameOf(notice.sentBy), sentAt: notice.sentAt.toISOString(),
+        readers: own(notice).map((reader) => ({ personId: reader.personId, name: nameOf(reader.personId), readAt: reader.readAt?.toISOString() ?? null })), mine: own(notice).some((reader) => reader.personId === personId),
+      };
+    });
+}
+
+/** Notes that the person has read a notice addressed to them; repeating it keeps the first time. */
+export async function readNotice(access: Access, noticeId: string, now: Date): Promise<void> {
+  await PickNotice.transaction(async (trx) => {
+    const notice = await PickNotice.query(trx).findOne({ estateId: access.estateId, id: noticeId }).throwIfNotFound();
+    const reader = await NoticeReader.query(trx).findOne({ noticeId, personId: access.personId });
+    if (!reader) throw new Missing('This notice is not addressed to you.');
+    if (reader.readAt !== null) return;
+    await NoticeReader.query(trx).where({ noticeId, personId: access.personId }).patch({ readAt: now });
+    await writeAudit(trx, access, { action: 'notices.read', subjectType: 'notice', subjectId: noticeId, subjectName: String(notice.number) });
+  });
+}

@@ -1,0 +1,52 @@
+import type { Figure, LotView, TankView } from '../../../shared/contracts/lots.ts';
+import { fitTank, type TankFit } from '../../../shared/cellar/tankFit.ts';
+import type { Format } from '../../lib/format.ts';
+import { decimalsOf, shownValue, type Quantity } from '../../lib/units.ts';
+import type { Evidence } from '../base/evidence.ts';
+
+/** A figure in the reader's units as evidence; on lots it is always an estimate unless it was measured outright. */
+export function evidenceOf(figure: Figure, how: { format: Format; quantity?: Quantity; unit?: string; decimals?: number }): Evidence {
+  const { format, quantity } = how;
+  const shown = (value: number) => (quantity ? shownValue(quantity, value, format.units) : value);
+  return {
+    value: shown(figure.value),
+    halfWidth: figure.halfWidth === null ? null : shown(figure.halfWidth),
+    unit: quantity ? format.unit(quantity) : (how.unit ?? ''),
+    decimals: how.decimals ?? (quantity ? decimalsOf(quantity, format.units) : 1),
+    n: figure.n,
+    confidence: figure.confidence,
+    kind: figure.kind,
+  };
+}
+
+/** "9 920 ± 1 200", or the value alone when it has no range. */
+export function figureText(figure: Figure, how: { format: Format; quantity?: Quantity; decimals?: number }): string {
+  const { value, halfWidth, decimals } = evidenceOf(figure, how);
+  // Litres are told no finer than their range: two figures of the half-width.
+  if (how.quantity === 'volume' && halfWidth !== null && halfWidth >= 10) {
+    const step = 10 ** (Math.floor(Math.log10(halfWidth)) - 1);
+    return how.format.estimate(Math.round(value / step) * step, Math.round(halfWidth / step) * step, 0);
+  }
+  return halfWidth === null ? how.format.number(value, decimals) : how.format.estimate(value, halfWidth, decimals);
+}
+
+export interface TankLoad {
+  readonly tank: TankView;
+  readonly lots: readonly LotView[];
+  /** Must of all lots in the tank; null while it is empty or nothing is known. */
+  readonly must: { readonly value: number; readonly low: number; readonly high: number } | null;
+  readonly fit: TankFit | null;
+}
+
+/** What goes into each tank: lots that share a tank are added up, their errors in squares. */
+export function tankLoads(tanks: readonly TankView[], lots: readonly LotView[]): TankLoad[] {
+  return tanks.map((tank) => {
+    const inside = lots.filter((lot) => lot.tankId === tank.id && lot.summary.mustL !== null);
+    if (inside.length === 0) return { tank, lots: [], must: null, fit: null };
+    const value = inside.reduce((sum, lot) => sum + lot.summary.mustL!.value, 0);
+    const root = (part: 'halfWidth' | 'standardError') => Math.sqrt(inside.reduce((sum, lot) => sum + (lot.summary.mustL![part] ?? 0) ** 2, 0));
+    const half = root('halfWidth');
+    const fit = fitTank({ value, standardError: root('standardError'), df: Infinity }, { volumeL: tank.litres, fillShare: tank.workingFill, minimumL: tank.litres * tank.minimumFill });
+    return { tank, lots: inside, must: { value, low: Math.max(0, value - half), high: value + half }, fit };
+  });
+}

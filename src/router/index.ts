@@ -1,6 +1,7 @@
 import { createRouter, createWebHistory, type RouteLocationNormalized, type RouteRecordRaw, type Router } from 'vue-router';
 import type { Permission, Reach } from '../../shared/catalog/permissions.ts';
 import type { useSessionStore } from '../stores/session.ts';
+import { firstPlace } from '../composables/firstPlace.ts';
 import { routePlaces, type Frame, type RouteName } from './routeNames.ts';
 import { views } from './views.ts';
 
@@ -39,11 +40,4 @@ function guard(to: RouteLocationNormalized, session: SessionStore, router: Route
   }
   const needs = to.meta.needs;
   return needs && !session.can(...needs) ? firstPlace(session, router) : true;
-}
-
-/** Where a person starts: crew in the field, everybody else with what needs them today. */
-export function firstPlace(session: SessionStore, router: Router): { name: RouteName; params?: Record<string, string> } {
-  const wanted: RouteName[] = session.isCrewOnly ? ['fieldWork', 'today'] : ['today', 'estate', 'fieldWork'];
-  const name = wanted.find((one) => router.hasRoute(one));
-  return name && session.estate ? { name, params: { estateId: session.estate.id } } : { name: 'home' };
 }

@@ -15,7 +15,7 @@ export async function mountWithTexts<C extends Component>(component: C, options:
   setActivePinia(pinia);
   const router = createRouter({ history: createMemoryHistory(), routes: Object.entries(routePlaces).map(([name, { path, frame }]) => ({ name, path, component: { render: () => null }, meta: { frame } })) });
   await router.push('/');
-  return mount(component, { attachTo: document.body, ...rest, global: { plugins: [pinia, i18n, [PrimeVue, { unstyled: true }], router], ...rest.global } } as never);
+  return mount(component, { attachTo: document.body, ...rest, global: { plugins: [pinia, i18n, [PrimeVue, { unstyled: true }], router], ...rest.global } } as never) as unknown as VueWrapper;
 }
 
 /** Text of an element as it is read: no runs of space. */

@@ -1,11 +1,12 @@
-import { withSource } from './byteSource.ts';
+import { withSource, type ByteSource } from './byteSource.ts';
 import { ImportProblem, naming } from './importProblem.ts';
 import { readPoints } from './points/readPoints.ts';
 import type { RasterReadOptions } from './raster/describeRaster.ts';
 import { inspectRaster } from './raster/inspectRaster.ts';
+import { tiffNames } from './raster/withRaster.ts';
 import { sniffFormat, type Sniffed, type SniffedFormat } from './sniffFormat.ts';
 import type { PointsUnderstood, RasterUnderstood, VectorUnderstood } from './understood.ts';
-import { readVectors } from './vector/readVectors.ts';
+import { layerNames, readVectors } from './vector/readVectors.ts';
 
 export type Understood = RasterUnderstood | VectorUnderstood | PointsUnderstood;
 
@@ -30,10 +31,16 @@ export const importFormats: readonly ImportFormat[] = [
 
 /** What a file holds, whatever its name says. Throws ImportProblem for anything that cannot be used. */
 export async function understandFile(input: string | Uint8Array, options: RasterReadOptions): Promise<Understood> {
-  const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffFormat(source.read(0, Math.min(4096, source.size)), options.fileName)));
+  const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffContents(source, options.fileName)));
   const format = importFormats.find(({ contents }) => contents.includes(sniffed.format));
   if (format === undefined) throw unreadable(sniffed, options.fileName);
   return format.read(input, options);
+}
+
+/** An archive with a TIFF and no outlines counts as the TIFF. */
+function sniffContents(source: ByteSource, fileName: string): Sniffed {
+  const sniffed = sniffFormat(source.read(0, Math.min(4096, source.size)), fileName);
+  return sniffed.format === 'zip' && tiffNames(source).length > 0 && layerNames(source).length === 0 ? { format: 'geotiff', foreignName: null } : sniffed;
 }
 
 function unreadable({ format, foreignName }: Sniffed, file: string): ImportProblem {

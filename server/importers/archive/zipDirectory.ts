@@ -145,3 +145,8 @@ function damaged(fact: string): ImportProblem {
 function unsafe(fact: string, params: Record<string, string | number>): ImportProblem {
   return new ImportProblem({ code: 'unsafe-archive', fact, remedy: 'Pack only the needed files into a plain ZIP and send that.', params });
 }
+
+/** Folders and files that some packers add beside the real ones. */
+export function isPackerRubbish(name: string): boolean {
+  return name.split('/').some((part) => part === '__MACOSX' || part.startsWith('._'));
+}

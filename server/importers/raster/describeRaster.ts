@@ -1,6 +1,4 @@
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
-import type { ByteSource } from '../byteSource.ts';
-import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import { referenceQuestion } from '../reference/candidates.ts';
 import { distanceKm } from '../reference/distance.ts';
@@ -9,9 +7,10 @@ import { datumWarning, referenceFromAnswer, referenceFromText } from '../referen
 import type { ImportQuestion, ImportWarning, PixelTransform, RasterUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
 import { readBands } from './bandTags.ts';
 import { referenceFromGeoKeys } from './geoKeyReference.ts';
-import { openRaster, type OpenRaster } from './openRaster.ts';
+import type { OpenRaster } from './openRaster.ts';
 import { outlineOf, placementOf, worldFileTransform } from './pixelTransform.ts';
 import { bandWarnings, verticalUnitOf } from './rasterWarnings.ts';
+import { withRaster } from './withRaster.ts';
 
 export interface RasterReadOptions extends ReadOptions {
   /** Text of the .tfw or .wld beside the file. */
@@ -22,11 +21,7 @@ export interface RasterReadOptions extends ReadOptions {
 
 /** What a GeoTIFF says about itself, with the questions it leaves open. Reads tags only. Throws ImportProblem. */
 export function describeRaster(input: string | Uint8Array, options: RasterReadOptions): Promise<RasterUnderstood> {
-  return naming(options.fileName, () => withSource(input, (source) => describeSource(source, options)));
-}
-
-export async function describeSource(source: ByteSource, options: RasterReadOptions): Promise<RasterUnderstood> {
-  return describeOpen(await openRaster(source), options);
+  return naming(options.fileName, () => withRaster(input, options, async (raster, own) => describeOpen(raster, own)));
 }
 
 export function describeOpen(raster: OpenRaster, options: RasterReadOptions): RasterUnderstood {

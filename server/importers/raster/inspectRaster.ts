@@ -1,10 +1,9 @@
-import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import type { ImportQuestion, ImportWarning, RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
-import { openRaster } from './openRaster.ts';
 import { previewOpen, type RasterPreview } from './previewRaster.ts';
 import { checkValues } from './valueChecks.ts';
+import { withRaster } from './withRaster.ts';
 
 export interface RasterInspection {
   understood: RasterUnderstood;
@@ -17,9 +16,8 @@ export interface RasterInspection {
  */
 export function inspectRaster(input: string | Uint8Array, options: RasterReadOptions): Promise<RasterInspection> {
   return naming(options.fileName, () =>
-    withSource(input, async (source) => {
-      const raster = await openRaster(source);
-      const described = describeOpen(raster, options);
+    withRaster(input, options, async (raster, own) => {
+      const described = describeOpen(raster, own);
       const preview = await previewOpen(raster, described, { noData: options.answers?.noData });
       const questions: ImportQuestion[] = [...described.questions];
       const warnings: ImportWarning[] = [...described.warnings];

@@ -1,10 +1,10 @@
-import { withSource } from '../byteSource.ts';
 import { naming } from '../importProblem.ts';
 import type { PixelTransform, RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
-import { openRaster, type OpenRaster } from './openRaster.ts';
+import type { OpenRaster } from './openRaster.ts';
 import { openPicture } from './pictureBlocks.ts';
 import type { RasterLayout } from './rasterLayout.ts';
+import { withRaster } from './withRaster.ts';
 
 export interface PreviewRequest {
   /** Bands to read, counted from 1; all of the file's (at most 8) when left out. */
@@ -30,12 +30,7 @@ const DECODED = 250e6;
 
 /** A small picture of the file for histograms and maps. Throws ImportProblem. */
 export function previewRaster(input: string | Uint8Array, options: RasterReadOptions, request: PreviewRequest = {}): Promise<RasterPreview> {
-  return naming(options.fileName, () =>
-    withSource(input, async (source) => {
-      const raster = await openRaster(source);
-      return previewOpen(raster, describeOpen(raster, options), request);
-    }),
-  );
+  return naming(options.fileName, () => withRaster(input, options, (raster, own) => previewOpen(raster, describeOpen(raster, own), request)));
 }
 
 export async function previewOpen(raster: OpenRaster, understood: RasterUnderstood, { bands, maxSide = 512, noData }: PreviewRequest): Promise<RasterPreview> {

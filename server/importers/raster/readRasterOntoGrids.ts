@@ -4,16 +4,15 @@ import { resampler, type ResampleMethod, type WindowedSink } from '../../../shar
 import type { RasterFrame } from '../../../shared/analysis/resampleFrame.ts';
 import { CellSums } from '../../../shared/analysis/resampleSums.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
-import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import { limits } from '../limits.ts';
 import { distanceKm } from '../reference/distance.ts';
 import { reprojectionTo } from '../reference/referenceSystem.ts';
 import type { RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
-import { openRaster } from './openRaster.ts';
 import { openPicture, type PictureReader } from './pictureBlocks.ts';
 import { at } from './pixelTransform.ts';
+import { withRaster } from './withRaster.ts';
 
 /** What to take from the file: one band, or an index of bands, which are averaged first. Bands count from 1. */
 export type RasterQuantity =
@@ -48,9 +47,8 @@ export interface GridReading {
  */
 export function readRasterOntoGrids(input: string | Uint8Array, options: RasterReadOptions, request: RasterOntoGridsRequest): Promise<GridReading[]> {
   return naming(options.fileName, () =>
-    withSource(input, async (source) => {
-      const raster = await openRaster(source);
-      const understood = describeOpen(raster, options);
+    withRaster(input, options, async (raster, own) => {
+      const understood = describeOpen(raster, own);
       const bands = bandsOf(request.quantity, understood);
       const noData = bands.map((index) => (request.noData === undefined ? (understood.bands.find((band) => band.index === index)!.noData) : request.noData));
       const sinks = request.grids.map((grid) => sinkOf(grid, understood, { method: request.quantity.kind === 'band' ? request.quantity.method : 'mean', bands: bands.length, noData }));

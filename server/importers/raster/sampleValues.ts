@@ -55,7 +55,7 @@ function packedIntegers(bytes: Uint8Array, bits: number, samplesPerRow: number):
     for (let i = 0; i < samplesPerRow; i++) {
       while (held < bits) {
         // Below 2^39, so plain numbers keep every bit.
-        value = (value % mask) * 256 + bytes[at++]!;
+        value = value * 256 + bytes[at++]!;
         held += 8;
       }
       held -= bits;

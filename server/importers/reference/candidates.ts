@@ -24,7 +24,7 @@ export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonL
 }
 
 function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
-  const found: (QuestionChoice & { distanceKm: number; centre: LonLat })[] = [];
+  const found: { value: string; label: string; outlineLonLat: RingLonLat; distanceKm: number; centre: LonLat }[] = [];
   const degrees = looksLikeDegrees(outline);
   for (const epsg of new Set(candidateCodes(estate))) {
     // Numbers the size of degrees would lie at the origin of a national grid, which may be near by chance.
@@ -34,7 +34,7 @@ function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
     if (away > FARTHEST_KM || found.some((other) => distanceKm(other.centre, place.centre) < SAME_PLACE_KM)) continue;
     found.push({ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: away, centre: place.centre });
   }
-  return found.sort((a, b) => Math.round(a.distanceKm / TIE_KM) - Math.round(b.distanceKm / TIE_KM)).slice(0, SHOWN).map(({ centre: _, ...choice }) => ({ ...choice, distanceKm: Math.round(choice.distanceKm * 10) / 10 }));
+  return found.sort((a, b) => Math.round(a.distanceKm / TIE_KM) - Math.round(b.distanceKm / TIE_KM)).slice(0, SHOWN).map(({ value, label, outlineLonLat, distanceKm: km }) => ({ value, label, outlineLonLat, distanceKm: Math.round(km * 10) / 10 }));
 }
 
 /** Without a place to compare with, only degrees can be recognised, by their size. */

@@ -1,7 +1,7 @@
 import type { Geometry, Position } from 'geojson';
 import { parseShp } from 'shpjs';
 import type { ZipArchive } from '../archive/zipArchive.ts';
-import type { ZipEntry } from '../archive/zipDirectory.ts';
+import { isPackerRubbish, type ZipEntry } from '../archive/zipDirectory.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { referenceFromText } from '../reference/referenceSystem.ts';
 import type { ImportWarning, ReferenceSystem } from '../understood.ts';
@@ -20,11 +20,6 @@ export interface ShapefileReading {
 /** Names of the layers in an archive: paths of .shp files without their ending. */
 export function shapefileNames(entries: readonly ZipEntry[]): string[] {
   return entries.filter(({ name }) => /\.shp$/i.test(name) && !isPackerRubbish(name)).map(({ name }) => name.slice(0, -4));
-}
-
-/** Folders and files that some packers add beside the real ones. */
-export function isPackerRubbish(name: string): boolean {
-  return name.split('/').some((part) => part === '__MACOSX' || part.startsWith('._'));
 }
 
 /** One layer: shapes, attributes, reference system. Throws ImportProblem; what can be done without is a warning. */

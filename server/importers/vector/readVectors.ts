@@ -1,4 +1,5 @@
 import { openZip, type ZipArchive } from '../archive/zipArchive.ts';
+import { isPackerRubbish } from '../archive/zipDirectory.ts';
 import { withSource, type ByteSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import { referenceFromEpsg } from '../reference/referenceSystem.ts';
@@ -10,7 +11,7 @@ import type { RawLayer } from './rawLayer.ts';
 import { readGeoJson } from './readGeoJson.ts';
 import { readGpx } from './readGpx.ts';
 import { readKml } from './readKml.ts';
-import { isPackerRubbish, readShapefile, shapefileNames } from './readShapefile.ts';
+import { readShapefile, shapefileNames } from './readShapefile.ts';
 
 /**
  * Outlines, soil maps, rows and tracks: zipped shapefile, GeoJSON, KML, KMZ, GPX, told apart by content. Shapes come out
@@ -18,6 +19,16 @@ import { isPackerRubbish, readShapefile, shapefileNames } from './readShapefile.
  */
 export function readVectors(input: string | Uint8Array, options: ReadOptions): Promise<VectorUnderstood> {
   return naming(options.fileName, () => withSource(input, async (source) => assembleVectors({ ...(await readLayers(source, options)), options })));
+}
+
+/** The shapefiles and other outline files a ZIP holds. */
+export function layerNames(source: ByteSource): string[] {
+  const { entries } = openZip(source);
+  return [...shapefileNames(entries), ...entries.filter(({ name }) => isOtherLayer(name)).map(({ name }) => name)];
+}
+
+function isOtherLayer(name: string): boolean {
+  return /\.(kml|geojson|json|gpx)$/i.test(name) && !isPackerRubbish(name);
 }
 
 interface LayersRead {
@@ -56,7 +67,7 @@ function readArchive(archive: ZipArchive, options: ReadOptions): LayersRead {
   const names = shapefileNames(archive.entries);
   if (names.length > 0) return readShapefiles(archive, names, options);
   const inner = archive.entries.filter(({ name }) => !isPackerRubbish(name));
-  const main = inner.find(({ name }) => /(^|\/)doc\.kml$/i.test(name)) ?? inner.find(({ name }) => /\.(kml|geojson|json|gpx)$/i.test(name));
+  const main = inner.find(({ name }) => /(^|\/)doc\.kml$/i.test(name)) ?? inner.find(({ name }) => isOtherLayer(name));
   if (main !== undefined) {
     const bytes = archive.read(main);
     return readText(sniffFormat(bytes.subarray(0, 4096), main.name).format, () => decodeText(bytes).text, { layerName: baseName(main.name), foreignName: null });

@@ -1,6 +1,7 @@
 import { deflateSync } from 'node:zlib';
 import { accepted, question, refused, text, type CorpusCase } from './corpus.ts';
 import { writeTiff, type TiffPlan } from './writeTiff.ts';
+import { writeZip } from './writeZip.ts';
 
 const small: TiffPlan = { width: 60, height: 50, geo: { x: 500000, y: 4950100, pixel: 2 } };
 const tiff = (plan: Partial<TiffPlan> = {}): Uint8Array => writeTiff({ ...small, ...plan, geo: plan.geo === undefined ? small.geo! : plan.geo });
@@ -38,7 +39,9 @@ const whole: CorpusCase[] = [
   raster('30 m pixels', () => tiff({ geo: geo({ pixel: 30 }) }), accepted()),
   raster('south-up by six numbers', () => tiff({ geo: geo({ transformation: [2, 0, 0, 500000, 0, 2, 0, 4950000, 0, 0, 0, 0, 0, 0, 0, 1] }) }), accepted()),
   raster('turned by 17 degrees', () => tiff({ geo: geo({ transformation: [1.9, 0.58, 0, 500000, 0.58, -1.9, 0, 4950100, 0, 0, 0, 0, 0, 0, 0, 1] }) }), accepted()),
-  raster('a negative pixel height', () => tiff({ geo: null, tags: {} }), refused('no-placement', /without a place/)),
+  raster('a negative pixel height', () => tiff({ geo: geo({ height: -2 }) }), accepted('negative-scale')),
+  raster('a TIFF in an archive', () => writeZip({ 'flight/layer.tif': tiff(), 'flight/readme.txt': 'x' }), accepted(), { fileName: 'layer.zip' }),
+  raster('a TIFF in an archive with world and projection files', () => writeZip({ 'layer.tif': tiff({ geo: null }), 'layer.tfw': '2\n0\n0\n-2\n500001\n4950099\n', 'layer.prj': 'EPSG:32631' }), accepted(), { fileName: 'layer.zip' }),
   raster('NaN and infinity among floats', () => tiff({ type: 'f32', value: (col, row) => (col === 0 ? NaN : col === 1 ? Infinity : col + row) }), accepted()),
   raster('pixels that mean points', () => tiff({ geo: geo({ isPoint: true }) }), accepted()),
   raster('a palette', () => tiff({ type: 'u8', value: (col) => col, tags: { 262: [3] } }), accepted('palette')),
@@ -76,6 +79,7 @@ const doubtful: CorpusCase[] = [
 ];
 
 const unusable: CorpusCase[] = [
+  raster('two TIFFs in an archive', () => writeZip({ 'a.tif': tiff(), 'b.tif': tiff() }), refused('no-layer', /2 TIFF files/), { fileName: 'layers.zip' }),
   raster('no place at all', () => tiff({ geo: null }), refused('no-placement', /without a place/)),
   raster('control points that bend', () => tiff({ geo: geo({ tiePoints: [0, 0, 0, 500000, 4950100, 0, 60, 0, 0, 500120, 4950110, 0, 60, 50, 0, 500150, 4950000, 0, 0, 50, 0, 500000, 4950000, 0] }) }), refused('no-placement', /control points/)),
   raster('pixels without size', () => tiff({ geo: geo({ pixel: 0 }) }), refused('no-placement', /no size/)),

@@ -33,6 +33,8 @@ export interface GeoPlan {
   y?: number;
   pixel?: number;
   isPoint?: boolean;
+  /** Height of a pixel as written, when it is not the side. */
+  height?: number;
   /** Sixteen numbers instead of corner and side. */
   transformation?: readonly number[];
   /** Sixes of column, row, 0, x, y, 0 instead. */
@@ -130,7 +132,7 @@ function entriesOf(plan: TiffPlan, { offsets, counts, little }: { offsets: numbe
     const { x = 500000, y = 4950000, pixel = 2, epsg = 32631 } = geo;
     if (geo.transformation !== undefined) entries.push(doubles(34264, geo.transformation));
     else if (geo.tiePoints !== undefined) entries.push(doubles(33922, geo.tiePoints));
-    else entries.push(doubles(33550, [pixel, pixel, 0]), doubles(33922, [0, 0, 0, x, y, 0]));
+    else entries.push(doubles(33550, [pixel, geo.height ?? pixel, 0]), doubles(33922, [0, 0, 0, x, y, 0]));
     const projected = epsg >= 4000 && epsg < 5000 ? [1024, 0, 1, 2, 2048, 0, 1, epsg] : [1024, 0, 1, 1, 3072, 0, 1, epsg];
     const keys = geo.keys ?? [...projected.slice(0, 4), 1025, 0, 1, geo.isPoint === true ? 2 : 1, ...projected.slice(4)];
     if (keys.length > 0) entries.push(shorts(34735, [1, 1, 1, keys.length / 4, ...keys]));

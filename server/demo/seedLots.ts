@@ -19,7 +19,7 @@ interface DemoLot {
 const lots: readonly DemoLot[] = [
   { name: 'Marl red', wineType: 'red', pick: 12, tank: 'T1', parts: [['Heron Bank', 1], ['Long Furrow', 1]] },
   { name: 'Hollow red', wineType: 'red', pick: 17, tank: 'T2', parts: [['Heron Bank', 3], ['Long Furrow', 3]] },
-  { name: 'Early rosé', wineType: 'rose', pick: 9, tank: 'T4', parts: [["Tinker's Acre", 2]] },
+  { name: 'Early rosé', wineType: 'rose', pick: 9, tank: 'T4', parts: [["Tinker's Acre", 1]] },
   { name: 'Millrace white', wineType: 'white', pick: 10, tank: 'W1', parts: [['Millrace', 1]] },
 ];
 

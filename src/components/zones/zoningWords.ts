@@ -1,0 +1,39 @@
+import type { ZoningView } from '../../../shared/contracts/zonings.ts';
+import type { Format } from '../../lib/format.ts';
+
+type Translate = (key: string, named?: Record<string, unknown>, plural?: number) => string;
+
+export interface Verdict {
+  readonly answer: string;
+  readonly rest: string;
+  readonly below: string;
+}
+
+/** The verdict as a person says it: the answer, why, and what is not known. */
+export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; format: Format }): Verdict {
+  const count = Math.max(1, zoning.advisedZones ?? 1);
+  const answer = !zoning.isJudged ? t('zones.verdict.notJudged') : t(`zones.verdict.${zoning.verdict ?? 'test'}`, { zones: t(`zones.inWords.${count}`) }, count);
+  const codes = new Set(zoning.reasons.map((reason) => reason.code));
+  const first = ['no-measured-layer', 'no-structure', 'plateaus', 'slope-only'].find((code) => codes.has(code));
+  const fruit = ['fruit-agrees', 'fruit-disagrees', 'fruit-unclear', 'few-readings', 'not-tested-on-fruit'].find((code) => codes.has(code));
+  const sentences = [first, fruit].flatMap((code) => (code ? [reasonWords(zoning, code, { t, format })] : []));
+  const also = ['too-small', 'stripes-evened', 'one-layer'].filter((code) => codes.has(code)).map((code) => reasonWords(zoning, code, { t, format }));
+  return { answer, rest: sentences.join(' '), below: [...also, differenceWords(zoning, { t, format }), t('zones.saysNothing')].filter((text) => text !== '').join(' ') };
+}
+
+function reasonWords(zoning: ZoningView, code: string, { t, format }: { t: Translate; format: Format }): string {
+  const reason = zoning.reasons.find((candidate) => candidate.code === code)!;
+  const figures = Object.fromEntries(Object.entries(reason.figures).map(([name, value]) => [name, value === null ? '' : format.number(value, 2)]));
+  const about = zoning.layers.find((layer) => layer.layerId === reason.about)?.name ?? (reason.about === null ? '' : t(`zones.fruit.${reason.about}`));
+  return t(`zones.reason.${code}`, { ...figures, about });
+}
+
+/** Size of the difference between zones, in the layer's own unit: a clear border may still divide two kinds of the same. */
+function differenceWords(zoning: ZoningView, { t, format }: { t: Translate; format: Format }): string {
+  const difference = zoning.differences[0];
+  const layer = zoning.layers.find((candidate) => candidate.layerId === difference?.layerId);
+  if (!difference || !layer || zoning.shown < 2) return '';
+  const decimals = layer.type === 'vigour' ? 2 : 1;
+  const unit = layer.unit === '' ? '' : ` ${layer.unit}`;
+  return t('zones.difference', { layer: layer.name, lowest: format.number(difference.lowest, decimals), highest: format.number(difference.highest, decimals), unit, within: format.number(difference.withinSd, decimals) });
+}

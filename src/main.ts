@@ -27,7 +27,7 @@ async function start(): Promise<void> {
   whenContacted((reached) => contact.note(reached, new Date()));
 
   // Without an answer the door still opens and says so; crews go on with what their phone holds.
-  await session.load().catch(() => undefined);
+  await session.load().catch(() => session.recall());
   if (session.person) useTheme().choose(session.person.theme);
   await showLanguage(session.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
 

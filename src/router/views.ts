@@ -29,5 +29,8 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   zoningBench: () => import('../views/zones/ZoningBenchView.vue'),
   zoning: () => import('../views/zones/ZoningBenchView.vue'),
   zoneEditor: () => import('../views/zones/ZoneEditorView.vue'),
+  fieldWork: () => import('../views/field/FieldWorkView.vue'),
+  fieldWalk: () => import('../views/field/FieldWalkView.vue'),
+  fieldOutbox: () => import('../views/field/FieldOutboxView.vue'),
   notFound: () => import('../views/door/NotFoundView.vue'),
 };

@@ -27,6 +27,7 @@ export const useSessionStore = defineStore('session', () => {
 
   function take(next: Session): void {
     session.value = next;
+    writeStored('session', next.person === null ? null : { ...next, csrfToken: '' });
     isLoaded.value = true;
     setCsrfToken(next.csrfToken);
   }
@@ -40,6 +41,13 @@ export const useSessionStore = defineStore('session', () => {
 
   async function load(): Promise<void> {
     take(await http.get<Session>('/api/session'));
+  }
+
+  /** Without signal: the person who was signed in on this device last, so that a crew goes on. The server still decides when it is reached. */
+  function recall(): void {
+    const kept = readStored<Session>('session');
+    if (kept) session.value = kept;
+    isLoaded.value = true;
   }
 
   async function signIn(email: string, password: string): Promise<void> {
@@ -66,8 +74,9 @@ export const useSessionStore = defineStore('session', () => {
 
   /** The server no longer knows the session: keep the words of the page, forget the person. */
   function forget(): void {
+    writeStored('session', null);
     session.value = { ...nobody, csrfToken: session.value.csrfToken, demo: session.value.demo };
   }
 
-  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, signIn, signOut, acceptInvitation, changePerson, chooseEstate, forget };
+  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, recall, signIn, signOut, acceptInvitation, changePerson, chooseEstate, forget };
 });

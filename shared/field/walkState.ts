@@ -1,0 +1,58 @@
+import type { FieldMeasure, FieldRound, WalkStop } from '../contracts/rounds.ts';
+
+/** What was typed in a round, as far as the walk needs it. */
+export interface WalkEntry {
+  readonly id: string;
+  readonly kind: 'reading' | 'finding';
+  readonly targetId: string | null;
+  readonly measureCode: string | null;
+  readonly rowId: string;
+  readonly ordinal: number;
+  readonly at: string;
+}
+
+export interface StopVine {
+  readonly rowId: string;
+  readonly rowLabel: string;
+  readonly ordinal: number;
+  readonly vineNumber: number;
+  readonly isReserve: boolean;
+}
+
+/** Measures read at a stop: those of the field; where all are for the lab, they are read here if somebody types them. */
+export function askedAt(round: Pick<FieldRound, 'measures'>, stop: WalkStop): FieldMeasure[] {
+  const here = round.measures.filter(({ code }) => stop.measures.includes(code));
+  const field = here.filter(({ measuredIn }) => measuredIn === 'field');
+  return field.length > 0 ? field : here;
+}
+
+/** The vine to read at a stop: the target, its reserve when something else stands there, or null when neither can be read. */
+export function vineAt(stop: WalkStop, entries: readonly WalkEntry[]): StopVine | null {
+  const isFound = (rowId: string, ordinal: number) => entries.some((entry) => entry.kind === 'finding' && entry.rowId === rowId && entry.ordinal === ordinal);
+  if (!isFound(stop.rowId, stop.ordinal)) return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false };
+  if (stop.reserve === null || isFound(stop.reserve.rowId, stop.reserve.ordinal)) return null;
+  return { ...stop.reserve, isReserve: true };
+}
+
+/** Measures that are still to be read at a stop. */
+export function openAt(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): FieldMeasure[] {
+  if (vineAt(stop, entries) === null) return [];
+  const isRead = (code: string) =>
+    entries.some((entry) => entry.kind === 'reading' && entry.targetId === stop.targetId && entry.measureCode === code) ||
+    round.received.some((reading) => reading.targetId === stop.targetId && reading.measureCode === code);
+  return askedAt(round, stop).filter(({ code }) => !isRead(code));
+}
+
+export function isStopDone(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): boolean {
+  return openAt(round, stop, entries).length === 0;
+}
+
+/** The next stop after `from` (index) that is open, going round to those passed over; null when the walk is done. */
+export function nextOpenStop(round: Pick<FieldRound, 'measures' | 'received' | 'stops'>, entries: readonly WalkEntry[], from = 0): number | null {
+  const count = round.stops.length;
+  for (let step = 0; step < count; step++) {
+    const index = (from + step) % count;
+    if (!isStopDone(round, round.stops[index]!, entries)) return index;
+  }
+  return null;
+}

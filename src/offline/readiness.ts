@@ -1,0 +1,44 @@
+import { fieldDatabase } from './fieldDatabase.ts';
+import { keptRound } from './keptRounds.ts';
+
+/** What a phone must hold before somebody walks out of reach. */
+export interface Readiness {
+  readonly hasRound: boolean;
+  readonly canWrite: boolean;
+  /** The program itself is kept on the phone, so that it opens without signal. */
+  readonly hasProgram: boolean;
+  /** The browser promised not to clear the store; null where it cannot be asked. */
+  readonly isPersistent: boolean | null;
+  readonly checkedAt: string;
+}
+
+export function isReady({ hasRound, canWrite, hasProgram }: Readiness): boolean {
+  return hasRound && canWrite && hasProgram;
+}
+
+/** Reads the stored round back, writes and reads a line, and looks for the kept program: a test, not a wish. */
+export async function checkReadiness(owner: { estateId: string; personId: string }, roundId: string, now: Date): Promise<Readiness> {
+  const kept = await keptRound(owner, roundId);
+  const hasRound = kept !== null && kept.round.stops.every(({ rowId }) => kept.round.rows.some(({ id }) => id === rowId)) && kept.round.measures.length > 0;
+  return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
+}
+
+async function writesAndReads(now: Date): Promise<boolean> {
+  const database = await fieldDatabase();
+  const value = now.toISOString();
+  await database.put('facts', { key: 'selfTest', value });
+  return (await database.get('facts', 'selfTest'))?.value === value;
+}
+
+async function programIsKept(): Promise<boolean> {
+  // While developing nothing is kept on purpose.
+  if (import.meta.env.DEV) return true;
+  if (!('serviceWorker' in navigator) || !('caches' in globalThis)) return false;
+  const registration = await navigator.serviceWorker.getRegistration();
+  return registration?.active != null && (await caches.match('/index.html', { ignoreSearch: true })) !== undefined;
+}
+
+async function askToPersist(): Promise<boolean | null> {
+  if (navigator.storage?.persist === undefined) return null;
+  return (await navigator.storage.persisted()) || (await navigator.storage.persist());
+}

@@ -1,0 +1,144 @@
+import { defineStore } from 'pinia';
+import { ref, shallowRef } from 'vue';
+import type { VineState } from '../../shared/contracts/rows.ts';
+import type { FieldMeasure, FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/rounds.ts';
+import { http } from '../lib/http.ts';
+import { HttpProblem } from '../lib/httpProblem.ts';
+import { deviceId } from '../offline/deviceId.ts';
+import type { Entry } from '../offline/fieldDatabase.ts';
+import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
+import { addEntries, allEntries, countWaiting, entriesOfRound, sendWaiting, takeBack } from '../offline/outbox.ts';
+
+interface Owner {
+  estateId: string;
+  personId: string;
+}
+
+/** The vine that is read for a stop: the target, or its reserve. */
+export interface VineAtStop {
+  readonly rowId: string;
+  readonly rowLabel: string;
+  readonly ordinal: number;
+  readonly vineNumber: number;
+  readonly isReserve: boolean;
+}
+
+/** The crew's day: what is kept on the phone, what was typed, what was received. Works the same with and without signal. */
+export const useFieldStore = defineStore('field', () => {
+  const rounds = shallowRef<readonly RoundSummary[]>([]);
+  const listedAt = ref<string | null>(null);
+  const round = shallowRef<FieldRound | null>(null);
+  const entries = shallowRef<readonly Entry[]>([]);
+  const all = shallowRef<readonly Entry[]>([]);
+  const waiting = ref(0);
+  const isSending = ref(false);
+  let owner: Owner = { estateId: '', personId: '' };
+
+
+  async function begin(estateId: string, personId: string): Promise<void> {
+    owner = { estateId, personId };
+    await count();
+  }
+
+  async function count(): Promise<void> {
+    waiting.value = await countWaiting(owner.personId);
+    all.value = await allEntries(owner.personId);
+    if (round.value) entries.value = await entriesOfRound(round.value.id);
+  }
+
+  /** What the phone holds first; then, when the server answers, the newest, with each round of one's own put on the phone. */
+  async function loadWork(): Promise<void> {
+    const kept = await keptList(owner);
+    if (kept) [rounds.value, listedAt.value] = [kept.items, kept.at];
+    const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`));
+    if (!fresh) return;
+    const mine = fresh.items.filter(({ isMine, state }) => isMine && (state === 'sent' || state === 'open'));
+    for (const { id } of mine) {
+      const full = await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${id}`));
+      if (full) await keepRound(owner, full, new Date());
+      await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
+    }
+    await keepList(owner, mine, new Date());
+    await dropOtherRounds(owner, mine.map(({ id }) => id));
+    [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
+  }
+
+  /** Opens a round from the phone; from the server only when the phone does not have it. */
+  async function openRound(roundId: string): Promise<boolean> {
+    const kept = await keptRound(owner, roundId);
+    const found = kept?.round ?? (await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${roundId}`)));
+    if (!found) return false;
+    if (!kept) await keepRound(owner, found, new Date());
+    round.value = found;
+    entries.value = await entriesOfRound(roundId);
+    return true;
+  }
+
+  /** Fetches the round again for its restrictions. Answers whether the server could be asked. */
+  async function refreshRound(roundId: string): Promise<boolean> {
+    const fresh = await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${roundId}`));
+    if (!fresh) return false;
+    await keepRound(owner, fresh, new Date());
+    round.value = fresh;
+    return true;
+  }
+
+  const setState = (roundId: string, state: 'open' | 'closed', startedAt?: string) => unlessOffline(() => http.patch(`/api/estates/${owner.estateId}/rounds/${roundId}`, { state, ...(startedAt ? { startedAt } : {}) }));
+
+  function entryOf(stop: WalkStop, vine: VineAtStop): Pick<Entry, 'id' | 'estateId' | 'personId' | 'roundId' | 'row' | 'vine' | 'at' | 'received' | 'outcome'> {
+    return { id: crypto.randomUUID(), ...owner, roundId: round.value!.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
+  }
+
+  /** Writes a value to the phone; it is safe when this resolves. Sending goes on by itself. */
+  async function record(stop: WalkStop, vine: VineAtStop, typed: { measure: FieldMeasure; text: string; value: number; isOdd: boolean; supersedes: string | null }): Promise<void> {
+    const head = entryOf(stop, vine);
+    const flags = [...(typed.isOdd ? (['odd'] as const) : []), ...(vine.isReserve ? (['reserve'] as const) : [])];
+    await addEntries([{
+      ...head, kind: 'reading', finding: null,
+      reading: {
+        id: head.id, blockId: round.value!.blockId, roundId: round.value!.id, targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal, measureCode: typed.measure.code,
+        value: typed.value, unit: typed.measure.unit, valueTyped: typed.text, takenAt: head.at, deviceId: deviceId(), supersedes: typed.supersedes, flags,
+      },
+    }]);
+    await count();
+    void send();
+  }
+
+  /** Notes what stands in the target's place: a proposal for the census, and the reserve takes over. */
+  async function find(stop: WalkStop, vine: VineAtStop, state: VineState): Promise<void> {
+    const head = entryOf(stop, vine);
+    await addEntries([{ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at } }]);
+    await count();
+    void send();
+  }
+
+  /** Takes the last entry back if it is only on this phone. */
+  async function undo(entry: Entry): Promise<boolean> {
+    const isBack = await takeBack([entry.id]);
+    await count();
+    return isBack;
+  }
+
+  async function send(): Promise<void> {
+    if (owner.personId === '') return;
+    isSending.value = true;
+    try {
+      await sendWaiting(owner.personId, () => new Date());
+    } finally {
+      isSending.value = false;
+      await count();
+    }
+  }
+
+  return { rounds, listedAt, round, entries, all, waiting, isSending, begin, count, loadWork, openRound, refreshRound, setState, record, find, undo, send };
+});
+
+/** Null when there is no signal; what the server refuses is thrown on. */
+async function unlessOffline<T>(ask: () => Promise<T>): Promise<T | null> {
+  try {
+    return await ask();
+  } catch (error) {
+    if (error instanceof HttpProblem && error.isOffline) return null;
+    throw error;
+  }
+}

@@ -38,7 +38,7 @@ export const routePlaces = {
   blockRipeness: { path: '/e/:estateId/blocks/:blockId/ripeness', frame: 'office', needs: ['results.see', 'read'], under: 'ripeness' },
   lots: { path: '/e/:estateId/lots', frame: 'office', needs: ['lots.see', 'read'] },
   lot: { path: '/e/:estateId/lots/:lotId', frame: 'office', needs: ['lots.see', 'read'], under: 'lots' },
-  pickBoard: { path: '/e/:estateId/pick-board', frame: 'office', needs: ['lots.see', 'read'], under: 'lots' },
+  pickBoard: { path: '/e/:estateId/pick-board', frame: 'office', needs: ['notices.acknowledge', 'own'], under: 'lots' },
   review: { path: '/e/:estateId/review', frame: 'office', needs: ['review.see', 'read'] },
   people: { path: '/e/:estateId/people', frame: 'office', needs: ['people.see', 'read'] },
   mail: { path: '/e/:estateId/mail', frame: 'office', needs: ['mail.see', 'read'], under: 'people' },

@@ -30,6 +30,12 @@ export function figureText(figure: Figure, how: { format: Format; quantity?: Qua
   return halfWidth === null ? how.format.number(value, decimals) : how.format.estimate(value, halfWidth, decimals);
 }
 
+/** A chance without false certainty: never 0 or 100 %. */
+export function chanceText(chance: number, format: Format): string {
+  if (chance > 0.99) return `> ${format.percent(0.99)}`;
+  return chance < 0.01 ? `< ${format.percent(0.01)}` : format.percent(chance);
+}
+
 export interface TankLoad {
   readonly tank: TankView;
   readonly lots: readonly LotView[];

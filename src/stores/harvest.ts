@@ -1,0 +1,66 @@
+import { defineStore } from 'pinia';
+import { shallowRef } from 'vue';
+import type { z } from 'zod';
+import type { Role } from '../../shared/catalog/roles.ts';
+import type { NoticeView, newNotice } from '../../shared/contracts/notices.ts';
+import type { RestrictionView } from '../../shared/contracts/restrictions.ts';
+import type { newTicket, ReviewView, TicketView } from '../../shared/contracts/tickets.ts';
+import { http } from '../lib/http.ts';
+
+interface Listed<Item> {
+  items: Item[];
+}
+
+export interface NoticePerson {
+  readonly id: string;
+  readonly name: string;
+  readonly roles: readonly Role[];
+}
+
+/** Pick notices, scale tickets and the season's review of an estate. */
+export const useHarvestStore = defineStore('harvest', () => {
+  const notices = shallowRef<readonly NoticeView[]>([]);
+  const people = shallowRef<readonly NoticePerson[]>([]);
+  const restrictions = shallowRef<readonly RestrictionView[]>([]);
+  const tickets = shallowRef<readonly TicketView[]>([]);
+  const review = shallowRef<ReviewView | null>(null);
+  const at = (estateId: string, path: string) => `/api/estates/${estateId}/${path}`;
+
+  async function loadNotices(estateId: string): Promise<void> {
+    notices.value = (await http.get<Listed<NoticeView>>(at(estateId, 'notices'))).items;
+  }
+
+  async function loadPeople(estateId: string): Promise<void> {
+    people.value = (await http.get<Listed<NoticePerson>>(at(estateId, 'notice-people'))).items;
+  }
+
+  async function loadRestrictions(estateId: string): Promise<void> {
+    restrictions.value = (await http.get<Listed<RestrictionView>>(at(estateId, 'restrictions'))).items;
+  }
+
+  async function send(estateId: string, lotId: string, notice: z.input<typeof newNotice>): Promise<number> {
+    const { number } = await http.post<{ number: number }>(at(estateId, `lots/${lotId}/notices`), notice);
+    await loadNotices(estateId);
+    return number;
+  }
+
+  async function read(estateId: string, noticeId: string): Promise<void> {
+    await http.post(at(estateId, `notices/${noticeId}/read`));
+    await loadNotices(estateId);
+  }
+
+  async function loadReview(estateId: string): Promise<void> {
+    review.value = await http.get<ReviewView>(at(estateId, 'review'));
+  }
+
+  async function loadTickets(estateId: string): Promise<void> {
+    tickets.value = (await http.get<Listed<TicketView>>(at(estateId, 'tickets'))).items;
+  }
+
+  async function enter(estateId: string, ticket: z.input<typeof newTicket>): Promise<void> {
+    await http.post(at(estateId, 'tickets'), ticket);
+    await Promise.all([loadTickets(estateId), loadReview(estateId)]);
+  }
+
+  return { notices, people, restrictions, tickets, review, loadNotices, loadPeople, loadRestrictions, send, read, loadReview, loadTickets, enter };
+});

@@ -54,6 +54,8 @@ export default defineConfig({
   build: {
     outDir: 'dist/client',
     target: 'es2022',
+    // The map's chunk is large and loads only with a map; a warning on every build would hide the next one.
+    chunkSizeWarningLimit: 1100,
     rolldownOptions: {
       output: {
         codeSplitting: {

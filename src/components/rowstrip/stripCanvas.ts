@@ -11,6 +11,8 @@ export interface StripInk {
   readonly markInk: string;
   readonly brick: string;
   readonly muted: string;
+  /** On a dark ground a hole in a dark zone needs an edge. */
+  readonly holeLine: string;
 }
 
 export interface StripPicture {
@@ -72,7 +74,10 @@ function paintRow(pen: Pen, row: RowShapes, { ink, fillOf }: RowPaint): void {
   }
   pen.globalAlpha = 1;
   pen.fillStyle = ink.ground;
-  for (const box of row.holes) pen.fillRect(box.x, box.y, box.width, box.height);
+  for (const box of row.holes) {
+    pen.fillRect(box.x, box.y, box.width, box.height);
+    outline(pen, box, { colour: ink.holeLine, width: 0.8, dash: [] });
+  }
   pen.globalAlpha = 0.4;
   outline(pen, row.outline, { colour: ink.zoneLine, width: 0.8, dash: [] });
   pen.globalAlpha = 1;

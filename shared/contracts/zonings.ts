@@ -6,7 +6,7 @@ const ordinal = z.number().int().min(-10_000).max(100_000);
 const zoneNumber = z.number().int().min(1).max(60);
 
 export const zoningOptions = z.object({
-  layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })).min(1, 'Choose at least one layer.').max(20),
+  layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })).min(1, 'Choose at least one layer.').max(20).refine((layers) => new Set(layers.map(({ layerId }) => layerId)).size === layers.length, 'A layer is chosen twice; choose each once.'),
   zones: z.union([z.literal('advise'), z.number().int().min(1).max(6)]).default('advise'),
   standardise: z.enum(['plain', 'robust']).default('plain'),
   smoothingM: z.number().min(0).max(50).default(3),
@@ -136,3 +136,6 @@ export type PublishEffects = z.infer<typeof publishEffects>;
 
 export const zoningComparison = z.object({ vines: z.number().int(), vinesMoved: z.number().int(), adjustedRand: z.number(), pairs: z.array(z.object({ from: z.number().int(), to: z.number().int(), vines: z.number().int() })) });
 export type ZoningComparison = z.infer<typeof zoningComparison>;
+
+export const exportFormatLine = z.object({ id: z.string(), mediaType: z.string(), extension: z.string() });
+export type ExportFormatLine = z.infer<typeof exportFormatLine>;

@@ -4,6 +4,7 @@ import { snapToRows } from '../../../shared/analysis/snapToRows.ts';
 import type { ZoneOperation } from '../../../shared/contracts/zonings.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
+import { fromAlongAcross, toAlongAcross } from '../../../shared/geo/rowFrame.ts';
 import { pointOnPiece } from '../../../shared/geo/vines.ts';
 import { Unusable } from '../../errors.ts';
 import { gridOf, type BlockVines } from '../../ground/blockVines.ts';
@@ -18,8 +19,7 @@ export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: Z
       return { kind: 'split', zone: operation.zone, lineLonLat: operation.line.coordinates.map(([lon, lat]): LonLat => [lon, lat]) };
     case 'splitAlongRow': {
       const row = rowOf(ground, operation.rowId);
-      const pieces = ground.rows.rows[row]!.pieces;
-      return { kind: 'split', zone: operation.zone, lineLonLat: pieces.flatMap((piece) => [piece.from, piece.to]), alongRow: ground.stored[row]!.label };
+      return { kind: 'split', zone: operation.zone, lineLonLat: borderBesideRow(ground, row), alongRow: ground.stored[row]!.label };
     }
     case 'giveRows':
       return { kind: 'give', toZone: operation.toZone, ground: { shape: 'strips', strips: operation.rows.flatMap((part) => strips(ground, part)) } };
@@ -36,6 +36,18 @@ export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: Z
     default:
       return operation;
   }
+}
+
+/** The line half-way from a row to the next one in order; beside the last row, half-way from the one before. A border on the vines themselves would share out one row. */
+function borderBesideRow(ground: BlockVines, row: number): LonLat[] {
+  const { rows, frame } = ground.rows;
+  const other = rows[row + 1] ?? rows[row - 1];
+  const shiftM = other === undefined ? 0 : (other.s - rows[row]!.s) / 2;
+  return rows[row]!.pieces.flatMap((piece) =>
+    [piece.fromXY, ...piece.bendsXY, piece.toXY].map((point) => {
+      const { t, s } = toAlongAcross(frame, point);
+      return fromUtm(fromAlongAcross(frame, { t, s: s + shiftM }), ground.block.epsg);
+    }));
 }
 
 /** The strip of ground that belongs to a row, or to its vines from one place to another: half a vine beyond each end. */

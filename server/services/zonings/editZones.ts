@@ -5,7 +5,8 @@ import type { ZoneEditLine, ZoneOperation } from '../../../shared/contracts/zoni
 import type { Access } from '../../access/access.ts';
 import { Clash, Stale, Unusable } from '../../errors.ts';
 import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
-import { writeAudit } from '../../models/AuditEntry.ts';
+import { AuditEntry, writeAudit } from '../../models/AuditEntry.ts';
+import { Block } from '../../models/Block.ts';
 import { Person } from '../../models/Person.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
@@ -20,6 +21,7 @@ export async function keepAsDraft(access: Access, zoningId: string, zoneCount: n
   if (zoning.state === 'live' || zoning.state === 'retired') throw new Clash('published', 'These zones were published. Take them up as a new draft to change them.');
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  requireSameOutline(zoning, ground);
   const map = zoneMapOf(gridOf(ground), decodeLabels(candidate.labels));
   zoning.chosenZones = zoneCount;
   const drawn = await drawZones(zoning, ground, map);
@@ -75,20 +77,29 @@ export async function listEdits(access: Access, zoningId: string): Promise<ZoneE
 /** Takes a zoning up again as a new draft; the old one stays as it is. */
 export async function restoreAsDraft(access: Access, zoningId: string): Promise<{ id: string }> {
   const old = await findZoning(access, zoningId);
-  if (old.labels === null) throw new Unusable('noZones', 'This zoning has no zones that could be taken up.');
+  if (old.labels === null || old.baseLabels === null) throw new Unusable('noZones', 'This zoning has no zones that could be taken up.');
   const ground = await loadBlockVines(access.estateId, old.blockId);
+  requireSameOutline(old, ground);
   const map = await mapOf(old, ground);
   const drawn = await drawZones(old, ground, map);
   return Zoning.transaction(async (trx) => {
+    await Block.query(trx).findOne({ estateId: access.estateId, id: old.blockId }).forUpdate();
     const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId: old.blockId }).max('number as number')) as unknown as { number: number }[];
     const { blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
     const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
-    const named = map.zones.filter(({ name }) => name !== null);
-    await ZoneEditRecord.query(trx).insert(named.map(({ number, name }, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit: { kind: 'rename', zone: number, name }, asked: { kind: 'rename', zone: number, name } }, reason: '', authorId: access.personId })));
+    const candidates = await ZoningCandidate.query(trx).where({ estateId: access.estateId, zoningId: old.id });
+    await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
+    const known = describingEdits(map);
+    await ZoneEditRecord.query(trx).insert(known.map((edit, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit, asked: edit }, reason: '', authorId: access.personId })));
     await storeZones(trx, copy, { ground, map, drawn });
     await writeAudit(trx, access, { action: 'zones.restore', subjectType: 'zoning', subjectId: copy.id, subjectName: ground.block.name, after: { from: old.number } });
     return { id: copy.id };
   });
+}
+
+/** Names and colours of zones as the edits that gave them. */
+function describingEdits(map: ZoneMap): ZoneEdit[] {
+  return map.zones.flatMap(({ number: zone, name, colour }): ZoneEdit[] => [...(name === null ? [] : [{ kind: 'rename' as const, zone, name }]), ...(colour === null ? [] : [{ kind: 'recolour' as const, zone, colour }])]);
 }
 
 interface StoredEdit {
@@ -114,8 +125,13 @@ async function openDraft(access: Access, zoningId: string, revision: number): Pr
   requireDraft(zoning);
   await requireRevision(access, zoning, revision);
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
-  if (gridOf(ground).key !== zoning.gridKey) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since these zones were made. Run the zoning again.`);
+  requireSameOutline(zoning, ground);
   return { zoning, ground, edits: await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId }).orderBy('sequence') };
+}
+
+/** Labels are of one grid; on another outline they would lie wrong. */
+export function requireSameOutline(zoning: Zoning, ground: BlockVines): void {
+  if (gridOf(ground).key !== zoning.gridKey) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since these zones were made. Run the zoning again.`);
 }
 
 function requireDraft(zoning: Zoning): void {
@@ -124,8 +140,8 @@ function requireDraft(zoning: Zoning): void {
 
 async function requireRevision(access: Access, zoning: Zoning, revision: number): Promise<void> {
   if (zoning.revision === revision) return;
-  const last = await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId: zoning.id }).orderBy('at', 'desc').first();
-  const who = last?.authorId ? ((await Person.query().findById(last.authorId))?.name ?? 'Somebody') : 'Somebody';
+  const last = await AuditEntry.query().where({ estateId: access.estateId, subjectType: 'zoning', subjectId: zoning.id }).whereLike('action', 'zones.%').orderBy('id', 'desc').first();
+  const who = last?.personId ? ((await Person.query().findById(last.personId))?.name ?? 'Somebody') : 'Somebody';
   throw new Stale('zonesChanged', `${who} changed these zones since you read them. Load them again; your step was not taken.`, { revision: zoning.revision, who });
 }
 

@@ -1,4 +1,5 @@
 import { adjustedRandIndex } from '../../../shared/analysis/agreement.ts';
+import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { PublishEffects, ZoningComparison } from '../../../shared/contracts/zonings.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
@@ -17,7 +18,8 @@ import { Plan } from '../../models/Plan.ts';
 import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zoning } from '../../models/Zoning.ts';
-import { lockZoning } from './editZones.ts';
+import { lockZoning, requireSameOutline } from './editZones.ts';
+import { readLabels } from './view.ts';
 
 /** What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. */
 export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
@@ -42,11 +44,12 @@ export async function publishZones(access: Access, zoningId: string, input: { re
   await Zoning.transaction(async (trx) => {
     const zoning = await lockZoning(trx, access, zoningId, input.revision);
     if (zoning.state !== 'draft') throw new Clash('notDraft', 'Only a draft can be published. Keep a proposal as a draft first.');
+    const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
+    requireSameOutline(zoning, ground);
     const [replaced] = await Zoning.query(trx).where({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' }).forUpdate().select('id', 'number');
     if (replaced) await Zoning.query(trx).where({ estateId: access.estateId, id: replaced.id }).patch({ state: 'retired' });
     await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'live', publishedAt: input.now, publishedBy: access.personId });
-    const { block } = await loadBlockVines(access.estateId, zoning.blockId, trx);
-    await writeAudit(trx, access, { action: 'zones.publish', subjectType: 'zoning', subjectId: zoningId, subjectName: block.name, before: { live: replaced?.number ?? null }, after: { live: zoning.number }, reason: input.reason || null });
+    await writeAudit(trx, access, { action: 'zones.publish', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, before: { live: replaced?.number ?? null }, after: { live: zoning.number }, reason: input.reason || null });
   });
 }
 
@@ -55,7 +58,7 @@ export async function compareZonings(access: Access, zoningId: string, otherId: 
   const one = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const other = await Zoning.query().findOne({ estateId: access.estateId, id: otherId, blockId: one.blockId }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, one.blockId);
-  const [a, b] = [zonesOfVines(ground, one), zonesOfVines(ground, other)];
+  const [a, b] = await Promise.all([zonesShown(access, one, ground), zonesShown(access, other, ground)]);
   const both = [...a.keys()].filter((vine) => a[vine]! > 0 && b[vine]! > 0);
   const pairs = groupBy(both, (vine) => `${a[vine]} ${b[vine]}`);
   return {
@@ -64,6 +67,14 @@ export async function compareZonings(access: Access, zoningId: string, otherId: 
     adjustedRand: adjustedRandIndex(both.map((vine) => a[vine]!), both.map((vine) => b[vine]!)),
     pairs: [...pairs.values()].map((vines) => ({ from: a[vines[0]!]!, to: b[vines[0]!]!, vines: vines.length })).sort((x, y) => x.from - y.from || x.to - y.to),
   };
+}
+
+/** Zones of the vines as a page shows them: those kept, or the advised ones of a proposal. */
+async function zonesShown(access: Access, zoning: Zoning, ground: BlockVines): Promise<Uint8Array> {
+  requireSameOutline(zoning, ground);
+  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', `Zoning ${zoning.number} has no result to compare.`);
+  const { labels, gridKey } = await readLabels(access, zoning.id, null);
+  return zonesOfVines(ground, { labels: Buffer.from(encodeCells(labels)), gridKey });
 }
 
 interface Both {

@@ -37,7 +37,11 @@ export async function requestZoning(access: Access, blockId: string, input: NewZ
 async function requireKnownRecipe(access: Access, blockId: string, options: ReturnType<typeof zoningOptions.parse>): Promise<void> {
   const earlier = await Zoning.query().where({ estateId: access.estateId, blockId }).select('options');
   const wanted = JSON.stringify(options);
-  if (!earlier.some((zoning) => JSON.stringify(zoningOptions.parse(zoning.options)) === wanted)) throw new NotAllowed('You may run a zoning again as it was; the agronomist chooses other layers and weights.');
+  const isKnown = earlier.some(({ options: stored }) => {
+    const recipe = zoningOptions.safeParse(stored);
+    return recipe.success && JSON.stringify(recipe.data) === wanted;
+  });
+  if (!isKnown) throw new NotAllowed('You may run a zoning again as it was; the agronomist chooses other layers and weights.');
 }
 
 /** A layer with red findings keeps out of zoning unless somebody answers for it by name. */

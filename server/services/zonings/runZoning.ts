@@ -25,6 +25,8 @@ export const zoningJob: JobHandler = {
     const zoning = await Zoning.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
     const ground = await loadBlockVines(estateId, zoning.blockId);
     const result = await computeInJob<ZoningResult>(context, 'zoning', await inputOf(zoning, ground));
+    // The last word before anything is kept: throws when the job was cancelled while its thread finished.
+    await context.report('store', 1);
     await storeResult(zoning, result);
     return { zoningId: zoning.id, advisedZones: result.advisedK };
   },
@@ -58,6 +60,8 @@ async function fruitOf(zoning: Zoning, ground: BlockVines, grid: ZoningInput['gr
 async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> {
   const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares } = result;
   await Zoning.transaction(async (trx) => {
+    const stillWanted = await Zoning.query(trx).findOne({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).forUpdate().select('id');
+    if (!stillWanted) return;
     await ZoningCandidate.query(trx).where({ estateId: zoning.estateId, zoningId: zoning.id }).delete();
     await ZoningCandidate.query(trx).insert(
       candidates.map(({ k, labels, doubt, zones, differences }) => ({
@@ -65,7 +69,7 @@ async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> 
         zones: plainFigures({ differences, zones: zones.map(({ polygonsXY: _metres, ...zone }) => zone) }),
       })),
     );
-    await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).patch({
+    await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({
       state: 'proposed', engineVersion: result.engineVersion, verdict: plainFigures(verdict), advisedZones: result.advisedK,
       evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares }),
     });

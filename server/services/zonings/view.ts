@@ -167,7 +167,7 @@ export function countVines(ground: BlockVines, zoneOf: Uint8Array, zone: number)
 /** Labels of a zoning or of one of its candidates, a byte a cell, for small pictures of the block. */
 export async function readLabels(access: Access, zoningId: string, zoneCount: number | null): Promise<{ labels: Uint8Array; gridKey: string }> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
-  if (zoneCount === null && zoning.labels !== null) return { labels: decodeLabels(zoning.labels), gridKey: zoning.gridKey };
+  if (zoning.labels !== null && (zoneCount === null || zoneCount === zoning.chosenZones)) return { labels: decodeLabels(zoning.labels), gridKey: zoning.gridKey };
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: zoneCount ?? zoning.advisedZones ?? 1 }).throwIfNotFound();
   return { labels: decodeLabels(candidate.labels), gridKey: zoning.gridKey };
 }

@@ -1,0 +1,454 @@
+import { randomUUID } from 'node:crypto';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
+import { newZoning, type ZoneOperation, type ZoningView } from '../../shared/contracts/zonings.ts';
+import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { BlockLayer } from '../../server/models/BlockLayer.ts';
+import { Job } from '../../server/models/Job.ts';
+import { Reading } from '../../server/models/Reading.ts';
+import { Zoning } from '../../server/models/Zoning.ts';
+import { ZoningCandidate } from '../../server/models/ZoningCandidate.ts';
+import { zonesOfVines } from '../../server/ground/blockVines.ts';
+import { JobCancelled, startRunner } from '../../server/jobs/runner.ts';
+import { editZones, keepAsDraft } from '../../server/services/zonings/editZones.ts';
+import { requestZoning } from '../../server/services/zonings/request.ts';
+import { zoningJob } from '../../server/services/zonings/runZoning.ts';
+import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { makePlateauBlock, workOnZoning, type PlateauBlock } from './support/makePlateauBlock.ts';
+import { lonLatAt } from './support/shapes.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+import { jobEnd } from './support/withFiles.ts';
+
+let app: TestApp;
+let estate: Awaited<ReturnType<TestApp['addEstate']>>;
+let owner: { estateId: string; personId: string; roles: ['owner'] };
+let agronomist: Agent;
+let manager: Agent;
+let managerName: string;
+let plot: PlateauBlock;
+
+beforeAll(async () => {
+  app = await startTestApp();
+  openComputePool(1);
+  estate = await app.addEstate('Zones test');
+  owner = { estateId: estate.estateId, personId: estate.ownerId, roles: ['owner'] };
+  plot = await makePlateauBlock(owner);
+  agronomist = await app.as((await app.addPerson(estate.estateId, 'agronomist')).email);
+  managerName = 'Inès Quillard';
+  manager = await app.as((await app.addPerson(estate.estateId, 'manager', managerName)).email);
+});
+afterAll(async () => {
+  await closeComputePool();
+  await app.close();
+});
+
+const base = () => `/api/estates/${estate.estateId}`;
+const recipe = (over: object = {}) => ({ layers: [{ layerId: plot.layerId }], ...over });
+const view = async (zoningId: string, zones?: number): Promise<ZoningView> => (await manager.get(`${base()}/zonings/${zoningId}${zones ? `?zones=${zones}` : ''}`)).body as ZoningView;
+const labelsOf = async (zoningId: string, zones: number) => (await manager.get(`${base()}/zonings/${zoningId}/labels?zones=${zones}`)).body as Buffer;
+
+async function zoned(over: object = {}): Promise<string> {
+  const asked = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe(over));
+  expect(asked.status, asked.text).toBe(202);
+  await workOnZoning(asked.body.jobId as string);
+  return asked.body.zoningId as string;
+}
+
+async function draft(zones: number): Promise<string> {
+  const zoningId = await zoned();
+  expect((await manager.patch(`${base()}/zonings/${zoningId}`, { chosenZones: zones })).status).toBe(200);
+  return zoningId;
+}
+
+async function edit(zoningId: string, operation: ZoneOperation): Promise<ZoningView> {
+  const { revision } = await view(zoningId);
+  const answer = await manager.post(`${base()}/zonings/${zoningId}/edits`, { operation, revision });
+  expect(answer.status, answer.text).toBe(201);
+  return answer.body as ZoningView;
+}
+
+/** What PostGIS says of the zones as kept: all sound, together the block, none over another. Square metres. */
+async function ground(zoningId: string) {
+  const { rows } = await app.knex.raw(
+    `with z as (select number, ST_Transform(geometry, 32630) as g, ST_IsValid(geometry) as ok from zones where zoning_id = ?),
+          b as (select ST_Transform(boundary, 32630) as g from blocks where id = ?)
+     select (select bool_and(ok) from z) as valid,
+            (select ST_Area(g) from b) as block,
+            (select ST_Area(ST_SymDifference((select ST_Union(g) from z), g)) from b) as astray,
+            (select coalesce(sum(ST_Area(ST_Intersection(p.g, q.g))), 0) from z p join z q on p.number < q.number) as twice`,
+    [zoningId, plot.blockId],
+  );
+  return rows[0] as { valid: boolean; block: number; astray: number; twice: number };
+}
+
+async function expectWhole(zoningId: string): Promise<void> {
+  const { valid, block, astray, twice } = await ground(zoningId);
+  expect(valid).toBe(true);
+  expect(astray).toBeLessThan(block * 1e-5);
+  expect(twice).toBeLessThan(block * 1e-5);
+}
+
+describe('a zoning', () => {
+  it('is proposed with candidates of one to six zones, and sees two plateaus as two zones', async () => {
+    const zoningId = await zoned({ name: 'June' });
+    const seen = await view(zoningId);
+    expect(seen).toMatchObject({ state: 'proposed', number: 1, name: 'June', blockName: 'Côte à l’Éperon', verdict: 'several', advisedZones: 2 });
+    expect(seen.evidence.map((row) => row.k)).toEqual([1, 2, 3, 4, 5, 6]);
+    expect(await ZoningCandidate.query().where({ zoningId }).resultSize()).toBe(6);
+    const two = await view(zoningId, 2);
+    expect(two.zones.map((zone) => zone.number)).toEqual([1, 2]);
+    expect(two.zones[0]!.layers[0]!.mean).toBeCloseTo(0.4, 1);
+    expect(two.zones[1]!.layers[0]!.mean).toBeCloseTo(0.7, 1);
+    expect(two.zones.reduce((sum, zone) => sum + zone.vines, 0)).toBe(plot.ground.vines.count);
+  });
+
+  it('gives the same labels, byte for byte, for the same recipe and seed', async () => {
+    const [one, again] = [await zoned({ seed: 11 }), await zoned({ seed: 11 })];
+    for (let k = 1; k <= 6; k++) expect((await labelsOf(one, k)).equals(await labelsOf(again, k))).toBe(true);
+    expect((await labelsOf(one, 2)).some((label) => label === 2)).toBe(true);
+  });
+
+  it('refuses a recipe that cannot be used and says what is wrong with it', async () => {
+    const ask = (body: object) => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, body);
+    for (const [body, words] of [
+      [{ layers: [] }, /at least one layer/],
+      [{ layers: [{ layerId: plot.layerId }, { layerId: plot.layerId }] }, /chosen twice/],
+      [{ layers: [{ layerId: plot.blockId }] }, /do not lie on/],
+      [recipe({ zones: 7 }), /zones/],
+      [recipe({ smoothingM: -1 }), /smoothingM/],
+      [recipe({ seed: 1.5 }), /seed/],
+    ] as const) {
+      const answer = await ask(body);
+      expect([answer.status, answer.body.detail]).toEqual([422, expect.stringMatching(words)]);
+    }
+  });
+
+  it('may be repeated by the manager as it was, and not with other weights', async () => {
+    await zoned();
+    const ask = (body: object) => manager.post(`${base()}/blocks/${plot.blockId}/zonings`, body);
+    expect((await ask(recipe({ seed: 99 }))).status).toBe(202);
+    const other = await ask(recipe({ layers: [{ layerId: plot.layerId, weight: 3 }] }));
+    expect(other.status).toBe(403);
+    expect(other.body.detail).toMatch(/agronomist/);
+  });
+
+  it('leaves out a layer with red findings until somebody answers for it', async () => {
+    const ask = () => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe());
+    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ findings: [{ code: 'stripes', severity: 'red', params: {} }] });
+    const refused = await ask();
+    expect(refused.status).toBe(422);
+    expect(refused.body).toMatchObject({ code: 'layerBlocked', detail: expect.stringContaining('Flight of June') });
+    expect((await manager.post(`${base()}/layers/${plot.layerId}/override`, { blockId: plot.blockId, reason: 'Seen on foot' })).status).toBeLessThan(300);
+    expect((await ask()).status).toBe(202);
+    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ findings: [], override: null });
+  });
+
+  it('refuses a layer that was placed on an older outline', async () => {
+    const { gridKey } = await BlockLayer.query().findOne({ layerId: plot.layerId }).throwIfNotFound();
+    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ gridKey: 'older' });
+    const refused = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe());
+    expect([refused.status, refused.body.code]).toEqual([409, 'layerStale']);
+    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ gridKey });
+  });
+
+  it('is not found from another estate', async () => {
+    const zoningId = await zoned();
+    const other = await app.addEstate('Next door');
+    const stranger = await app.as(other.ownerEmail);
+    const there = `/api/estates/${other.estateId}/zonings/${zoningId}`;
+    for (const path of ['', '/labels', '/edits', '/effects', `/compare?with=${zoningId}`]) expect((await stranger.get(there + path)).status, path).toBe(404);
+    for (const path of ['/undo', '/redo', '/publish']) expect((await stranger.post(there + path, { revision: 0 })).status, path).toBe(404);
+    expect((await stranger.post(`${there}/edits`, { operation: { kind: 'merge', zones: [1], into: 2 }, revision: 0 })).status).toBe(404);
+    expect((await stranger.post(`${there}/restore`)).status).toBe(404);
+    expect((await stranger.patch(there, { chosenZones: 2 })).status).toBe(404);
+    expect((await stranger.post(`/api/estates/${other.estateId}/blocks/${plot.blockId}/zonings`, recipe())).status).toBe(404);
+    expect((await view(zoningId)).state).toBe('proposed');
+  });
+});
+
+describe('a zoning that does not come to its end', () => {
+  const ask = () => requestZoning(owner, plot.blockId, newZoning.parse(recipe()), '2026-09-03');
+  const expectNothing = async (zoningId: string) => {
+    expect((await view(zoningId)).state).toBe('failed');
+    expect(await ZoningCandidate.query().where({ zoningId }).resultSize()).toBe(0);
+  };
+
+  it('leaves no proposal when it is called off while it waits', async () => {
+    const { zoningId, jobId } = await ask();
+    expect((await agronomist.delete(`${base()}/jobs/${jobId}`)).body.state).toBe('cancelled');
+    await expectNothing(zoningId);
+    expect((await manager.patch(`${base()}/zonings/${zoningId}`, { chosenZones: 2 })).status).toBe(409);
+  });
+
+  it('leaves no proposal when it is called off while it is computed', async () => {
+    const { zoningId, jobId } = await ask();
+    const job = await Job.query().patchAndFetchById(jobId, { state: 'running' });
+    const report = async () => {
+      await agronomist.delete(`${base()}/jobs/${jobId}`);
+      throw new JobCancelled();
+    };
+    await expect(zoningJob.work({ job, report })).rejects.toThrow(JobCancelled);
+    await expectNothing(zoningId);
+  });
+
+  it('leaves no proposal when it is called off in the last moment before it is kept', async () => {
+    const { zoningId, jobId } = await ask();
+    const job = await Job.query().patchAndFetchById(jobId, { state: 'running' });
+    await zoningJob.work({ job, report: async (stage) => void (stage === 'store' && (await agronomist.delete(`${base()}/jobs/${jobId}`))) });
+    await expectNothing(zoningId);
+  });
+
+  it('is marked as failed with the reason', async () => {
+    const here = await BlockLayer.query().findOne({ layerId: plot.layerId }).throwIfNotFound();
+    await BlockLayer.query().findById(here.id).patch({ cells: here.cells.subarray(0, 40) });
+    const { zoningId, jobId } = await ask();
+    const runner = await startRunner(app.config.databaseUrl);
+    try {
+      expect((await jobEnd(agronomist, base(), jobId)).state).toBe('failed');
+      await expect.poll(async () => (await view(zoningId)).state).toBe('failed');
+    } finally {
+      await runner.stop();
+      await BlockLayer.query().findById(here.id).patch({ cells: here.cells });
+    }
+    expect((await view(zoningId)).problem).toMatch(/cells cannot be read.*Import the layer again/);
+    await expectNothing(zoningId);
+  });
+});
+
+describe('a draft', () => {
+  it('fills the block: areas add up to within 0.1 %, no gap, no overlap', async () => {
+    const zoningId = await draft(4);
+    const seen = await view(zoningId);
+    expect(seen).toMatchObject({ state: 'draft', chosenZones: 4, shown: 4 });
+    const { areaM2 } = plot.ground.block;
+    expect(Math.abs(seen.zones.reduce((sum, zone) => sum + zone.areaM2, 0) / areaM2 - 1)).toBeLessThan(1e-3);
+    expect(seen.zones.reduce((sum, zone) => sum + zone.vines, 0)).toBe(plot.ground.vines.count);
+    await expectWhole(zoningId);
+  });
+
+  it('is merged, named, undone and brought back, each step as it was', async () => {
+    // Clean-up leaves three of the four.
+    const zoningId = await draft(4);
+    const ids = (await view(zoningId)).zones.map((zone) => zone.id);
+    const named = await edit(zoningId, { kind: 'rename', zone: 1, name: 'Crête' });
+    expect(named.zones[0]).toMatchObject({ name: 'Crête', id: ids[0] });
+    const merged = await edit(zoningId, { kind: 'merge', zones: [2, 3], into: 2 });
+    expect(merged.zones.map((zone) => zone.number)).toEqual([1, 2]);
+    const step = async (which: 'undo' | 'redo') => manager.post(`${base()}/zonings/${zoningId}/${which}`, { revision: (await view(zoningId)).revision });
+    const back = (await step('undo')).body as ZoningView;
+    expect(back.zones.map(({ number, areaM2, vines, geometry }) => ({ number, areaM2, vines, geometry }))).toEqual(named.zones.map(({ number, areaM2, vines, geometry }) => ({ number, areaM2, vines, geometry })));
+    expect((await step('undo')).body.zones[0].name).toBe('');
+    expect((await step('undo')).status).toBe(409);
+    await step('redo');
+    expect((await step('redo')).body.zones).toEqual(merged.zones);
+    expect((await step('redo')).status).toBe(409);
+    const { items } = (await manager.get(`${base()}/zonings/${zoningId}/edits`)).body as { items: { sequence: number; author: string; undone: boolean }[] };
+    expect(items.map(({ sequence, author, undone }) => [sequence, author, undone])).toEqual([[1, managerName, false], [2, managerName, false]]);
+  });
+
+  it('goes on from where it was undone to: what was taken back is let go', async () => {
+    const zoningId = await draft(2);
+    await edit(zoningId, { kind: 'rename', zone: 1, name: 'First thought' });
+    await manager.post(`${base()}/zonings/${zoningId}/undo`, { revision: (await view(zoningId)).revision });
+    await edit(zoningId, { kind: 'rename', zone: 1, name: 'Second thought' });
+    expect((await manager.post(`${base()}/zonings/${zoningId}/redo`, { revision: (await view(zoningId)).revision })).status).toBe(409);
+    expect((await view(zoningId)).zones[0]!.name).toBe('Second thought');
+  });
+
+  it('is split along a row: that row and the next one keep their vines together', async () => {
+    const zoningId = await draft(1);
+    const row = Math.floor(plot.ground.stored.length / 2);
+    const split = await edit(zoningId, { kind: 'splitAlongRow', zone: 1, rowId: plot.ground.stored[row]!.id });
+    expect(split.zones.map((zone) => zone.number)).toEqual([1, 2]);
+    await expectWhole(zoningId);
+    const zoneOf = zonesOfVines(plot.ground, await Zoning.query().findById(zoningId).throwIfNotFound());
+    const { rowStart } = plot.ground.vines;
+    const sideOf = (index: number) => [...new Set(zoneOf.subarray(rowStart[index], rowStart[index + 1]))];
+    expect(sideOf(row)).toHaveLength(1);
+    expect(sideOf(row + 1)).toHaveLength(1);
+    expect(sideOf(row)).not.toEqual(sideOf(row + 1));
+    expect(sideOf(0)).toEqual(sideOf(row));
+    expect(sideOf(plot.ground.stored.length - 1)).toEqual(sideOf(row + 1));
+  });
+
+  it('gives whole rows, and parts of rows, to another zone', async () => {
+    const zoningId = await draft(1);
+    const given = plot.ground.stored.slice(10, 14);
+    const whole = await edit(zoningId, { kind: 'giveRows', toZone: 2, rows: given.map(({ id }) => ({ rowId: id, from: null, to: null })) });
+    const vines = given.reduce((sum, row) => sum + row.vineCount, 0);
+    expect(Math.abs(whole.zones[1]!.vines / vines - 1)).toBeLessThan(0.02);
+    const part = await edit(zoningId, { kind: 'giveRows', toZone: 1, rows: given.map(({ id }) => ({ rowId: id, from: 1, to: 20 })) });
+    expect(Math.abs((whole.zones[1]!.vines - part.zones[1]!.vines) / 80 - 1)).toBeLessThan(0.05);
+    await expectWhole(zoningId);
+  });
+
+  it('is snapped to whole rows, so that every row is of one zone', async () => {
+    const zoningId = await draft(2);
+    const snapped = await edit(zoningId, { kind: 'snap', mode: 'wholeRow', shortestRunM: 20 });
+    expect(snapped.zones).toHaveLength(2);
+    await expectWhole(zoningId);
+    const zoneOf = zonesOfVines(plot.ground, await Zoning.query().findById(zoningId).throwIfNotFound());
+    const { rowStart } = plot.ground.vines;
+    const mixed = plot.ground.stored.filter((_row, index) => new Set(zoneOf.subarray(rowStart[index], rowStart[index + 1])).size > 1);
+    expect(mixed.length).toBeLessThanOrEqual(plot.ground.stored.length * 0.05);
+  });
+
+  it('is cleaned of patches that are too small to work', async () => {
+    const zoningId = await draft(1);
+    const shape = { type: 'Polygon' as const, coordinates: [[lonLatAt(40, 40), lonLatAt(50, 40), lonLatAt(50, 50), lonLatAt(40, 50), lonLatAt(40, 40)]] };
+    const spotted = await edit(zoningId, { kind: 'giveArea', toZone: 2, area: shape });
+    expect(spotted.zones[1]!.areaM2).toBeGreaterThan(60);
+    expect(spotted.zones[1]!.areaM2).toBeLessThan(140);
+    expect((await edit(zoningId, { kind: 'clean', smallestPatchHa: 0.05 })).zones.map((zone) => zone.number)).toEqual([1]);
+    await expectWhole(zoningId);
+  });
+
+  it('refuses an edit that makes no sense and stays as it was', async () => {
+    const zoningId = await draft(2);
+    const { revision } = await view(zoningId);
+    const away = { type: 'LineString' as const, coordinates: [lonLatAt(900, 0), lonLatAt(900, 90)] };
+    for (const operation of [
+      { kind: 'merge', zones: [9], into: 1 },
+      { kind: 'merge', zones: [1], into: 1 },
+      { kind: 'split', zone: 1, line: away },
+      { kind: 'giveRows', toZone: 1, rows: [{ rowId: plot.blockId }] },
+      { kind: 'renumber', numbers: [{ from: 1, to: 2 }] },
+      { kind: 'rename', zone: 1, name: 'two\nlines' },
+      { kind: 'fold', zone: 1 },
+    ]) {
+      const answer = await manager.post(`${base()}/zonings/${zoningId}/edits`, { operation, revision });
+      expect([operation.kind, answer.status]).toEqual([operation.kind, 422]);
+    }
+    expect((await view(zoningId)).revision).toBe(revision);
+  });
+
+  it('refuses a step made on an old state and names who changed it, also by undoing', async () => {
+    const zoningId = await draft(2);
+    const { revision } = await view(zoningId);
+    const operation = { kind: 'rename', zone: 1, name: 'Late' };
+    await edit(zoningId, { kind: 'rename', zone: 1, name: 'Early' });
+    const late = await agronomist.post(`${base()}/zonings/${zoningId}/edits`, { operation, revision });
+    expect(late.status).toBe(412);
+    expect(late.body).toMatchObject({ who: managerName, revision: revision + 1, detail: expect.stringContaining(managerName) });
+    const ownerAgent = await app.as(estate.ownerEmail);
+    await ownerAgent.post(`${base()}/zonings/${zoningId}/undo`, { revision: revision + 1 });
+    const later = await agronomist.post(`${base()}/zonings/${zoningId}/edits`, { operation, revision: revision + 1 });
+    expect(later.status).toBe(412);
+    expect(later.body.who).toMatch(/^Owner/);
+    expect((await view(zoningId)).zones[0]!.name).toBe('');
+  });
+
+  it('is taken by one of two people who edit in the same moment', async () => {
+    const zoningId = await draft(2);
+    const { revision } = await view(zoningId);
+    const send = (agent: Agent, name: string) => agent.post(`${base()}/zonings/${zoningId}/edits`, { operation: { kind: 'rename', zone: 1, name }, revision });
+    const answers = await Promise.all([send(manager, 'Mine'), send(agronomist, 'Yours')]);
+    expect(answers.map((answer) => answer.status).sort()).toEqual([201, 412]);
+  });
+
+  it('stays one whole through any sequence of edits', async () => {
+    const random = seededRandom(20_260_903);
+    const zoningId = await draft(3);
+    const access = { ...owner };
+    const areaM2 = plot.ground.block.areaM2;
+    let taken = 0;
+    for (let sequence = 0; sequence < 15; sequence++) {
+      await keepAsDraft(access, zoningId, 2 + randomIndex(random, 4));
+      for (let step = 0; step < 3; step++) {
+        const { revision } = await Zoning.query().findById(zoningId).throwIfNotFound();
+        // A random edit may make no sense for the zones that are there; a refusal must leave them as they were.
+        const done = await editZones(access, zoningId, { operation: randomOperation(random), reason: '', revision }).then(() => true, (error: { name: string }) => {
+          expect(error.name).toBe('AnalysisError');
+          return false;
+        });
+        if (done) taken += 1;
+      }
+      await expectWhole(zoningId);
+      const seen = await view(zoningId);
+      expect(Math.abs(seen.zones.reduce((sum, zone) => sum + zone.areaM2, 0) / areaM2 - 1)).toBeLessThan(1e-3);
+      expect(seen.zones.reduce((sum, zone) => sum + zone.vines, 0)).toBe(plot.ground.vines.count);
+    }
+    expect(taken).toBeGreaterThan(20);
+  }, 180_000);
+});
+
+function randomOperation(random: () => number): ZoneOperation {
+  const zone = () => 1 + randomIndex(random, 4);
+  const point = () => lonLatAt(160 * random(), 100 * random());
+  const row = () => plot.ground.stored[randomIndex(random, plot.ground.stored.length)]!.id;
+  const [a, b, c] = [point(), point(), point()];
+  const choices: ZoneOperation[] = [
+    { kind: 'merge', zones: [zone()], into: zone() },
+    { kind: 'split', zone: zone(), line: { type: 'LineString', coordinates: [a, b, c] } },
+    { kind: 'splitAlongRow', zone: zone(), rowId: row() },
+    { kind: 'giveRows', toZone: zone(), rows: [{ rowId: row(), from: null, to: null }, { rowId: row(), from: 3, to: 40 }] },
+    { kind: 'giveArea', toZone: zone(), area: { type: 'Polygon', coordinates: [[a, b, c, a]] } },
+    { kind: 'renumber', numbers: [{ from: zone(), to: 7 }] },
+    { kind: 'snap', mode: random() < 0.5 ? 'wholeRow' : 'partRow', shortestRunM: 15 },
+    { kind: 'clean', smallestPatchHa: 0.03 },
+  ];
+  return choices[randomIndex(random, choices.length)]!;
+}
+
+describe('publishing', () => {
+  let first: string;
+  const publish = async (zoningId: string) => manager.post(`${base()}/zonings/${zoningId}/publish`, { revision: (await view(zoningId)).revision, reason: 'Walked it' });
+
+  it('puts a draft in force, once, and only a draft', async () => {
+    const proposal = await zoned();
+    expect((await manager.post(`${base()}/zonings/${proposal}/publish`, { revision: 0 })).status).toBe(409);
+    first = await draft(2);
+    await edit(first, { kind: 'rename', zone: 1, name: 'Crête' });
+    await edit(first, { kind: 'recolour', zone: 2, colour: '#336699' });
+    expect((await agronomist.post(`${base()}/zonings/${first}/publish`, { revision: 2 })).status).toBe(403);
+    const live = await publish(first);
+    expect(live.body).toMatchObject({ state: 'live', publishedAt: expect.any(String) });
+    expect((await publish(first)).status).toBe(409);
+    expect((await manager.post(`${base()}/zonings/${first}/edits`, { operation: { kind: 'merge', zones: [1], into: 2 }, revision: live.body.revision })).status).toBe(409);
+    const zones = (await manager.get(`${base()}/zones`)).body.features as { properties: { name: string } }[];
+    expect(zones.map((zone) => zone.properties.name)).toEqual(['Crête', '']);
+    expect(await AuditEntry.query().where({ subjectId: first, action: 'zones.publish' })).toMatchObject([{ reason: 'Walked it' }]);
+  });
+
+  it('tells before how many readings and vines would change zone, then retires the zones in force', async () => {
+    const { seasonId } = await Zoning.query().findById(first).throwIfNotFound();
+    const zoneOf = zonesOfVines(plot.ground, await Zoning.query().findById(first).throwIfNotFound());
+    const place = (vine: number) => ({ rowId: plot.ground.stored[plot.ground.vines.row[vine]!]!.id, ordinal: plot.ground.vines.ordinal[vine]! });
+    const [inOne, inTwo] = [1, 2].map((zone) => [...zoneOf.keys()].filter((vine) => zoneOf[vine] === zone));
+    const sampled = [...inOne!.slice(0, 5), ...inTwo!.slice(0, 3)];
+    await Reading.query().insert(sampled.map((vine) => ({ id: randomUUID(), estateId: estate.estateId, seasonId, blockId: plot.blockId, ...place(vine), measureCode: 'brix', value: 22, unit: '°Brix', takenAt: new Date('2026-09-01T09:00:00Z'), source: 'field' as const })));
+    const next = await draft(2);
+    await edit(next, { kind: 'merge', zones: [1], into: 2 });
+    const effects = await manager.get(`${base()}/zonings/${next}/effects`);
+    expect(effects.body).toMatchObject({ replaces: (await view(first)).number, readingsMoved: 5, readingsOutside: 0, vinesMoved: inOne!.length });
+    expect((await publish(next)).status).toBe(200);
+    expect((await view(first)).state).toBe('retired');
+    expect(await Zoning.query().where({ blockId: plot.blockId, state: 'live' }).resultSize()).toBe(1);
+  });
+
+  it('keeps names and colours of retired zones when they are taken up as a new draft', async () => {
+    const made = await manager.post(`${base()}/zonings/${first}/restore`);
+    expect(made.status).toBe(201);
+    const [old, copy] = [await view(first), await view(made.body.id as string)];
+    expect(copy.state).toBe('draft');
+    expect(copy.zones.map(({ name, colour, areaM2, vines }) => ({ name, colour, areaM2, vines }))).toEqual(old.zones.map(({ name, colour, areaM2, vines }) => ({ name, colour, areaM2, vines })));
+    expect(copy.zones.map((zone) => zone.name)).toEqual(['Crête', '']);
+    expect(copy.zones[1]!.colour).toBe('#336699');
+    expect(old.state).toBe('retired');
+    const edited = await edit(copy.id, { kind: 'rename', zone: 2, name: 'Fond' });
+    expect(edited.zones.map((zone) => [zone.name, zone.doubtfulShare])).toEqual([['Crête', old.zones[0]!.doubtfulShare], ['Fond', old.zones[1]!.doubtfulShare]]);
+    expect((await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body.zones).toHaveLength(3);
+  });
+
+  it('compares two zonings vine by vine', async () => {
+    const one = await draft(2);
+    const same = await manager.get(`${base()}/zonings/${one}/compare?with=${first}`);
+    expect(same.body).toMatchObject({ vines: plot.ground.vines.count, vinesMoved: 0, adjustedRand: 1 });
+    const proposal = await zoned();
+    expect((await manager.get(`${base()}/zonings/${proposal}/compare?with=${first}`)).body.vines).toBe(plot.ground.vines.count);
+    await edit(one, { kind: 'renumber', numbers: [{ from: 1, to: 2 }, { from: 2, to: 1 }] });
+    const swapped = (await manager.get(`${base()}/zonings/${one}/compare?with=${first}`)).body as { vines: number; vinesMoved: number; adjustedRand: number; pairs: object[] };
+    expect(swapped).toMatchObject({ vinesMoved: swapped.vines, adjustedRand: 1 });
+    expect(swapped.pairs).toHaveLength(2);
+  });
+});

@@ -1,0 +1,70 @@
+import { describe, expect, it } from 'vitest';
+import type { Figure, LotSummary, LotView, LotZone } from '../../shared/contracts/lots.ts';
+import { chanceText, figureText, tankLoads } from '../../src/components/lots/lotFigures.ts';
+import { freeRows, rowsBetween, withoutZone, withZone } from '../../src/components/lots/lotParts.ts';
+import { createFormat } from '../../src/lib/format.ts';
+
+const format = createFormat({ language: 'en', units: 'metric' });
+const figure = (value: number, halfWidth: number): Figure => ({ value, halfWidth, standardError: halfWidth / 1.959964, n: null, confidence: 0.95, kind: 'estimated' });
+const rows = ['1', '2', '3', '4'].map((label) => ({ id: `row ${label}`, label, free: label !== '4' }));
+const zone = (zoneId: string, inLots: LotZone['inLots'] = []) => ({ zoneId, rows, inLots }) as unknown as LotZone;
+const lot = (lines: { zoneId: string; rowIds: string[] | null }[], mustL: Figure | null = null, tankId: string | null = null) => ({ lines, tankId, summary: { mustL } as LotSummary }) as unknown as LotView;
+
+describe('moving zones between lots', () => {
+  it('keeps the rows of the other parts', () => {
+    const parts = withZone(lot([{ zoneId: 'a', rowIds: ['row 1'] }]), zone('b'), null);
+    expect(parts).toEqual([{ zoneId: 'a', rowIds: ['row 1'] }, { zoneId: 'b', rowIds: null }]);
+  });
+
+  it('adds rows to those of the zone that are in already, and calls all of them the whole zone', () => {
+    const some = withZone(lot([{ zoneId: 'a', rowIds: ['row 1'] }]), zone('a'), ['row 2']);
+    expect(some).toEqual([{ zoneId: 'a', rowIds: ['row 1', 'row 2'] }]);
+    expect(withZone(lot(some as never), zone('a'), ['row 3', 'row 4'])).toEqual([{ zoneId: 'a', rowIds: null }]);
+  });
+
+  it('takes a zone out and leaves the rest', () => {
+    expect(withoutZone(lot([{ zoneId: 'a', rowIds: null }, { zoneId: 'b', rowIds: null }]), 'a')).toEqual([{ zoneId: 'b', rowIds: null }]);
+  });
+
+  it('means the whole zone while nothing of it is taken, and the free rows afterwards', () => {
+    expect(freeRows(zone('a'))).toBeNull();
+    expect(freeRows(zone('a', [{ lotId: 'x', lotName: 'X', share: 0.25 }]))).toEqual(['row 1', 'row 2', 'row 3']);
+  });
+
+  it('takes rows from either end', () => {
+    expect(rowsBetween(zone('a'), 'row 3', 'row 2')).toEqual(['row 2', 'row 3']);
+    expect(rowsBetween(zone('a'), 'row 9', 'row 2')).toEqual([]);
+  });
+});
+
+describe('tanks', () => {
+  const tank = { id: 't4', name: 'T4', litres: 12_000, workingFill: 0.8, minimumFill: 0 };
+
+  it('say 30 % for 9920 ± 1200 L of must in 12 000 L at 80 %', () => {
+    // Normal distribution: P(X < 9600) with mean 9920 and sd 1200 / 1.959964 is 0.3006 (R 4.2.2, pnorm).
+    const [load] = tankLoads([tank], [lot([], figure(9920, 1200), 't4')]);
+    expect(load!.fit!.chanceOfFit).toBeCloseTo(0.3006, 4);
+    expect(load!.must).toEqual({ value: 9920, low: 8720, high: 11_120 });
+  });
+
+  it('add up lots that share a tank, errors in squares', () => {
+    const [load] = tankLoads([tank], [lot([], figure(4000, 300), 't4'), lot([], figure(5000, 400), 't4')]);
+    expect(load!.must).toEqual({ value: 9000, low: 8500, high: 9500 });
+  });
+
+  it('are empty without a lot', () => {
+    expect(tankLoads([tank], [lot([], figure(9920, 1200))])[0]).toMatchObject({ must: null, fit: null });
+  });
+
+  it('never promise that a lot fits, or that it does not', () => {
+    expect(chanceText(1, format)).toBe('> 99\u2009%');
+    expect(chanceText(0, format)).toBe('< 1\u2009%');
+  });
+});
+
+describe('litres', () => {
+  it('are told no finer than their range', () => {
+    expect(figureText(figure(34_714, 10_097), { format, quantity: 'volume' })).toBe('35\u2009000\u2009±\u200910\u2009000');
+    expect(figureText(figure(8272, 2604), { format, quantity: 'volume' })).toBe('8\u2009300\u2009±\u20092\u2009600');
+  });
+});

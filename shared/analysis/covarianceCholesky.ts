@@ -3,9 +3,8 @@
  * Matrices are flat, row after row.
  */
 
-/** Lower triangle L with L·Lᵀ = matrix. A pivot that rounding made negative counts as zero (its column is left out). */
-export function choleskyFactor(matrix: ArrayLike<number>, size: number): Float64Array {
-  const lower = new Float64Array(size * size);
+/** Lower triangle L with L·Lᵀ = matrix, written into `lower` (by default a new array). A pivot that rounding made negative counts as zero (its column is left out). */
+export function choleskyFactor(matrix: ArrayLike<number>, size: number, lower = new Float64Array(size * size)): Float64Array {
   for (let row = 0; row < size; row++) {
     for (let col = 0; col <= row; col++) {
       let sum = matrix[row * size + col]!;

@@ -60,7 +60,9 @@ export function spectrumOf({ transform, products, pairs }: LagSums): Float64Arra
     }
   }
   const transformed = transform.forward(plane);
-  return Float64Array.from({ length: width * height }, (_, i) => transformed[2 * i]!);
+  const spectrum = new Float64Array(width * height);
+  for (let i = 0; i < spectrum.length; i++) spectrum[i] = transformed[2 * i]!;
+  return spectrum;
 }
 
 function varianceOf({ products, pairs }: LagSums): number {
@@ -68,19 +70,23 @@ function varianceOf({ products, pairs }: LagSums): number {
 }
 
 function sumOfPositive(spectrum: Float64Array): number {
-  return spectrum.reduce((sum, value) => sum + Math.max(0, value), 0);
+  let sum = 0;
+  for (const value of spectrum) if (value > 0) sum += value;
+  return sum;
 }
 
 /** Negative power is set to 0, shared power held to what the two layers have, and the variances restored by `scales`. */
 function factorised(transform: PlaneTransform, spectra: readonly (readonly Float64Array[])[], scales: readonly number[]): FieldRecipe {
   const layerCount = scales.length;
   const size = transform.width * transform.height;
+  const frequencies = audible(spectra, size);
+  const triangle = (layerCount * (layerCount + 1)) / 2;
+  const factors = new Float64Array(frequencies.length * triangle);
   const matrix = new Float64Array(layerCount * layerCount);
-  const frequencies: number[] = [];
-  const factors: number[] = [];
-  const least = scales.map((_, layer) => (NEGLIGIBLE_POWER * sumOfPositive(spectra[layer]![layer]!)) / size);
-  for (let i = 0; i < size; i++) {
-    if (!least.some((limit, layer) => spectra[layer]![layer]![i]! > limit)) continue;
+  const lower = new Float64Array(layerCount * layerCount);
+  const norm = 1 / Math.sqrt(size);
+  for (let at = 0, next = 0; at < frequencies.length; at++) {
+    const i = frequencies[at]!;
     for (let a = 0; a < layerCount; a++) {
       for (let b = 0; b <= a; b++) {
         const most = Math.sqrt(Math.max(0, spectra[a]![a]![i]!) * Math.max(0, spectra[b]![b]![i]!));
@@ -89,9 +95,21 @@ function factorised(transform: PlaneTransform, spectra: readonly (readonly Float
         matrix[b * layerCount + a] = value;
       }
     }
-    const lower = choleskyFactor(matrix, layerCount);
-    frequencies.push(i);
-    for (let a = 0; a < layerCount; a++) for (let b = 0; b <= a; b++) factors.push(lower[a * layerCount + b]! / Math.sqrt(size));
+    choleskyFactor(matrix, layerCount, lower);
+    for (let a = 0; a < layerCount; a++) for (let b = 0; b <= a; b++) factors[next++] = lower[a * layerCount + b]! * norm;
   }
-  return { transform, layerCount, frequencies: Uint32Array.from(frequencies), factors: Float64Array.from(factors) };
+  return { transform, layerCount, frequencies, factors };
+}
+
+/** Frequencies at which some layer has more than a negligible share of its power. */
+function audible(spectra: readonly (readonly Float64Array[])[], size: number): Uint32Array {
+  const least = spectra.map((row, layer) => (NEGLIGIBLE_POWER * sumOfPositive(row[layer]!)) / size);
+  const found = new Uint32Array(size);
+  let count = 0;
+  for (let i = 0; i < size; i++) {
+    let isAudible = false;
+    for (let layer = 0; layer < least.length; layer++) if (spectra[layer]![layer]![i]! > least[layer]!) isAudible = true;
+    if (isAudible) found[count++] = i;
+  }
+  return found.slice(0, count);
 }

@@ -9,50 +9,65 @@ import { randomIndex, type Random } from './random.ts';
 
 /** k centres, row after row. Points that coincide may give coinciding centres; the refinement repairs empty zones. */
 export function seedCentres(points: PointTable, k: number, random: Random): Float64Array {
-  const { count, dimensions } = points;
+  const first = randomIndex(random, points.count);
+  return moreCentres(points, points.values.slice(first * points.dimensions, (first + 1) * points.dimensions), { k, random });
+}
+
+/** The given centres and as many drawn ones as make k: a warm start from fewer zones to more. */
+export function moreCentres(points: PointTable, given: Float64Array, { k, random }: { k: number; random: Random }): Float64Array {
+  const { count, dimensions, values } = points;
   const centres = new Float64Array(k * dimensions);
-  const copyPoint = (point: number, zone: number) => {
-    for (let f = 0; f < dimensions; f++) centres[zone * dimensions + f] = points.values[point * dimensions + f]!;
-  };
-  const first = randomIndex(random, count);
-  copyPoint(first, 0);
-  let nearest = squaredDistancesTo(points, first, null);
+  centres.set(given);
+  let nearest = new Float64Array(count).fill(Infinity);
+  let trial = new Float64Array(count);
+  let kept = new Float64Array(count);
+  const already = given.length / dimensions;
+  let total = 0;
+  for (let zone = 0; zone < already; zone++) {
+    total = shorten(points, nearest, { target: given, at: zone * dimensions, into: trial });
+    [nearest, trial] = [trial, nearest];
+  }
   const draws = 2 + Math.floor(Math.log(k));
-  for (let zone = 1; zone < k; zone++) {
-    let best = { point: 0, total: Infinity, nearest };
+  for (let zone = already; zone < k; zone++) {
+    let best = Infinity;
+    let chosen = 0;
     for (let draw = 0; draw < draws; draw++) {
-      const point = drawByWeight(nearest.squared, random() * nearest.total);
-      const candidate = squaredDistancesTo(points, point, nearest.squared);
-      if (candidate.total < best.total) best = { point, total: candidate.total, nearest: candidate };
+      const point = drawByWeight(nearest, random() * total);
+      const left = shorten(points, nearest, { target: values, at: point * dimensions, into: trial });
+      if (left >= best) continue;
+      best = left;
+      chosen = point;
+      [kept, trial] = [trial, kept];
     }
-    copyPoint(best.point, zone);
-    nearest = best.nearest;
+    for (let f = 0; f < dimensions; f++) centres[zone * dimensions + f] = values[chosen * dimensions + f]!;
+    [nearest, kept] = [kept, nearest];
+    total = best;
   }
   return centres;
 }
 
-interface Nearest {
-  readonly squared: Float64Array;
-  readonly total: number;
+interface Target {
+  /** Numbers that hold the target's position from index `at`. */
+  readonly target: Float64Array;
+  readonly at: number;
+  readonly into: Float64Array;
 }
 
-/** Squared distance of every point to one of them, or to the nearest centre so far when that is closer. */
-function squaredDistancesTo(points: PointTable, target: number, sofar: Float64Array | null): Nearest {
-  const { values, count, dimensions } = points;
-  const squared = new Float64Array(count);
-  const base = target * dimensions;
+/** Squared distance of every point to the target, or what it was when that is shorter; returns the sum. */
+function shorten({ values, count, dimensions }: PointTable, before: Float64Array, { target, at, into }: Target): number {
   let total = 0;
-  for (let point = 0; point < count; point++) {
+  for (let point = 0, p = 0; point < count; point++) {
     let distance = 0;
-    for (let f = 0; f < dimensions; f++) {
-      const difference = values[point * dimensions + f]! - values[base + f]!;
+    for (let f = 0; f < dimensions; f++, p++) {
+      const difference = values[p]! - target[at + f]!;
       distance += difference * difference;
     }
-    if (sofar !== null && sofar[point]! < distance) distance = sofar[point]!;
-    squared[point] = distance;
+    const sofar = before[point]!;
+    if (sofar < distance) distance = sofar;
+    into[point] = distance;
     total += distance;
   }
-  return { squared, total };
+  return total;
 }
 
 function drawByWeight(weights: Float64Array, target: number): number {

@@ -5,10 +5,10 @@
  * In: layers on the grid. Out: one weight a layer with the reason as a code and figures.
  */
 
-import { AnalysisError } from './analysisError.ts';
 import { correlation } from './agreement.ts';
 import type { Cells, Grid } from './grid.ts';
-import { edgeCoincidence, type EdgeCoincidence } from './layerAdviceEdges.ts';
+import { edgeComparison, type EdgeCoincidence } from './layerAdviceEdges.ts';
+import { quantileOfSorted } from './quantile.ts';
 import type { Random } from './random.ts';
 import { evidenceField } from './verdictField.ts';
 
@@ -37,13 +37,16 @@ const LEAST_EXCESS = 0.15;
 /** Edges are compared on a coarse plane; the comparison is one of many small transforms. */
 const MOST_EDGE_CELLS = 1500;
 const RARE_SHARE = 0.02;
+const LEAST_COVERED = 0.9;
+const SPREAD_CELLS = 5000;
+/** A prime, so that the steps do not fall on one column. */
+const FAR_STEP = 7919;
 
 export function adviseLayers(grid: Grid, layers: readonly AdvisableLayer[], random: Random): LayerAdvice[] {
   const evidence = layers.filter(({ role, kind }) => role === 'evidence' && kind === 'number');
-  return layers.map((layer) => {
-    if (evidence.length === 0) return advice(layer.id, 1, 'only-context');
-    return layer.role === 'evidence' ? adviseEvidence(layer, evidence) : adviseContext(grid, { layer, evidence }, random);
-  });
+  if (evidence.length === 0) return layers.map(({ id }) => advice(id, 1, 'only-context'));
+  const coincidences = measuredCoincidences(grid, { evidence, context: layers.filter((layer) => !evidence.includes(layer)) }, random);
+  return layers.map((layer) => (evidence.includes(layer) ? adviseEvidence(layer, evidence) : adviseContext(layer, coincidences.get(layer.id))));
 }
 
 function advice(id: string, weight: number, code: LayerAdviceCode, rest: { about?: string; figures?: Record<string, number> } = {}): LayerAdvice {
@@ -63,36 +66,68 @@ function adviseEvidence(layer: AdvisableLayer, evidence: readonly AdvisableLayer
 
 /** Correlation over the cells that both layers have; 0 when one of them is constant there. */
 export function correlationOfCells(first: Cells, second: Cells): number {
-  const both = Uint32Array.from(first.keys()).filter((cell) => !Number.isNaN(first[cell]!) && !Number.isNaN(second[cell]!));
-  const r = correlation(Float64Array.from(both, (cell) => first[cell]!), Float64Array.from(both, (cell) => second[cell]!));
+  const inFirst = new Float64Array(first.length);
+  const inSecond = new Float64Array(first.length);
+  let count = 0;
+  for (let cell = 0; cell < first.length; cell++) {
+    if (Number.isNaN(first[cell]!) || Number.isNaN(second[cell]!)) continue;
+    inFirst[count] = first[cell]!;
+    inSecond[count++] = second[cell]!;
+  }
+  const r = correlation(inFirst.subarray(0, count), inSecond.subarray(0, count));
   return Number.isNaN(r) ? 0 : r;
 }
 
-function adviseContext(grid: Grid, { layer, evidence }: { layer: AdvisableLayer; evidence: readonly AdvisableLayer[] }, random: Random): LayerAdvice {
-  const coincidence = measuredCoincidence(grid, { layer, evidence }, random);
-  if (coincidence === null) return advice(layer.id, 0, 'context-off');
+/** A layer that could not be compared is left out without figures. */
+function adviseContext({ id }: AdvisableLayer, coincidence: EdgeCoincidence | undefined): LayerAdvice {
+  if (coincidence === undefined) return advice(id, 0, 'context-off');
   const { correlation: edges, excess, deviations } = coincidence;
   const isOffered = deviations >= LEAST_DEVIATIONS && excess >= LEAST_EXCESS;
-  return advice(layer.id, 0, isOffered ? 'context-offered' : 'context-off', { figures: { correlation: edges, excess, deviations } });
+  return advice(id, 0, isOffered ? 'context-offered' : 'context-off', { figures: { correlation: edges, excess, deviations } });
 }
 
-/** Null when the layer cannot be compared: one value everywhere, or too few cells in common. */
-function measuredCoincidence(grid: Grid, { layer, evidence }: { layer: AdvisableLayer; evidence: readonly AdvisableLayer[] }, random: Random): EdgeCoincidence | null {
-  try {
-    const field = evidenceField(grid, [...evidence.map(({ cells }) => cells), ...columnsOf(layer)], { mostCells: MOST_EDGE_CELLS });
-    return edgeCoincidence({ plane: field, cellSizeM: field.cellSizeM, evidence: field.layers.slice(0, evidence.length), context: field.layers.slice(evidence.length) }, random);
-  } catch (error) {
-    if (error instanceof AnalysisError) return null;
-    throw error;
-  }
+interface Comparison {
+  readonly evidence: readonly AdvisableLayer[];
+  readonly context: readonly AdvisableLayer[];
+}
+
+/** By id, for the context layers that differ within the block and cover nearly all of what the evidence covers. */
+function measuredCoincidences(grid: Grid, { evidence, context }: Comparison, random: Random): Map<string, EdgeCoincidence> {
+  const covered = (layer: AdvisableLayer) => {
+    let both = 0;
+    let measured = 0;
+    for (let cell = 0; cell < grid.inside.length; cell++) {
+      if (grid.inside[cell] === 0 || evidence.some(({ cells }) => Number.isNaN(cells[cell]!))) continue;
+      measured++;
+      if (!Number.isNaN(layer.cells[cell]!)) both++;
+    }
+    return measured > 0 && both / measured >= LEAST_COVERED;
+  };
+  const compared = context.filter(covered).map((layer) => ({ id: layer.id, columns: columnsOf(layer) })).filter(({ columns }) => columns.length > 0);
+  if (compared.length === 0) return new Map();
+  const field = evidenceField(grid, [...evidence.map(({ cells }) => cells), ...compared.flatMap(({ columns }) => columns)], { mostCells: MOST_EDGE_CELLS });
+  const compare = edgeComparison({ plane: field, cellSizeM: field.cellSizeM }, field.layers.slice(0, evidence.length), random);
+  let next = evidence.length;
+  return new Map(compared.map(({ id, columns }) => [id, compare(field.layers.slice(next, (next += columns.length)))]));
 }
 
 /** A class is a column of its own, 1 where the class lies, unless it is too rare to have edges worth comparing. */
 function columnsOf({ kind, cells }: AdvisableLayer): Cells[] {
-  if (kind === 'number') return [cells];
+  if (kind === 'number') return hasSpread(cells) ? [cells] : [];
   const counts = new Map<number, number>();
   for (const code of cells) if (!Number.isNaN(code)) counts.set(code, (counts.get(code) ?? 0) + 1);
   const total = [...counts.values()].reduce((sum, count) => sum + count, 0);
   const common = [...counts].filter(([, count]) => count > RARE_SHARE * total && count < total).map(([code]) => code);
   return common.map((code) => cells.map((value) => (Number.isNaN(value) ? NaN : Number(value === code))));
+}
+
+/** More than the clipped ends must differ, or nothing is left to standardise; judged on some thousand cells far apart. */
+function hasSpread(cells: Cells): boolean {
+  const values: number[] = [];
+  for (let i = 0; i < Math.min(cells.length, SPREAD_CELLS); i++) {
+    const value = cells[(i * FAR_STEP) % cells.length]!;
+    if (!Number.isNaN(value)) values.push(value);
+  }
+  values.sort((a, b) => a - b);
+  return values.length > 0 && quantileOfSorted(values, 0.01) < quantileOfSorted(values, 0.99);
 }

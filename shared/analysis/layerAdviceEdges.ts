@@ -5,7 +5,7 @@
  * textbook p-values say (Clifford, Richardson & Hémon 1989). In: fields on one plane. Out: correlation and its excess.
  */
 
-import { rankCorrelation } from './agreement.ts';
+import { averageRanks, correlation } from './agreement.ts';
 import { surrogateFields, surrogateModel } from './covarianceSurrogates.ts';
 import type { MaskedPlane } from './covariance.ts';
 import type { Random } from './random.ts';
@@ -13,7 +13,7 @@ import { gradientSquares, maskedSmoother } from './verdictCalmCells.ts';
 
 const EDGE_SMOOTHING_M = 4;
 /** Random fields for each of the two sides. */
-const REFERENCES = 20;
+const REFERENCES = 10;
 
 export interface EdgeCoincidence {
   readonly correlation: number;
@@ -22,36 +22,33 @@ export interface EdgeCoincidence {
   readonly deviations: number;
 }
 
-export interface EdgeInput {
+export interface EdgePlane {
   readonly plane: MaskedPlane;
   readonly cellSizeM: number;
-  /** Evidence layers together: their edges are added up. */
-  readonly evidence: readonly Float64Array[];
-  /** One column for a layer of numbers, one a class for a map of classes. */
-  readonly context: readonly Float64Array[];
 }
 
-/** Measures the coincidence of edges; layers are standardised and 0 outside the mask. */
-export function edgeCoincidence({ plane, cellSizeM, evidence, context }: EdgeInput, random: Random): EdgeCoincidence {
-  const edges = edgeMeter(plane, cellSizeM);
-  const evidenceEdges = edges(evidence);
-  const contextEdges = edges(context);
-  const references: number[] = [];
-  // Random fields cannot stand in for a map of classes; there the evidence's own random fields are the comparison.
-  for (const [field] of context.length > 1 ? [] : surrogateFields(surrogateModel(plane, context), REFERENCES, random)) {
-    references.push(rankCorrelation(evidenceEdges, edges([withMarginalOf(plane, field!, context[0]!)])));
-  }
-  for (const fields of surrogateFields(surrogateModel(plane, evidence), REFERENCES, random)) {
-    references.push(rankCorrelation(edges(fields.map((field, l) => withMarginalOf(plane, field, evidence[l]!))), contextEdges));
-  }
-  const correlation = rankCorrelation(evidenceEdges, contextEdges);
-  const mean = references.reduce((sum, value) => sum + value, 0) / references.length;
-  const sd = Math.sqrt(references.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (references.length - 1));
-  return { correlation, excess: correlation - mean, deviations: (correlation - mean) / sd };
+/**
+ * Compares the evidence, whose layers' edges are added up, with one context layer after the other. A context layer is one
+ * column of numbers, or one column a class. Columns are standardised and 0 outside the mask.
+ */
+export function edgeComparison({ plane, cellSizeM }: EdgePlane, evidence: readonly Float64Array[], random: Random): (context: readonly Float64Array[]) => EdgeCoincidence {
+  const ranksOf = edgeRanks(plane, cellSizeM);
+  const evidenceRanks = ranksOf(evidence);
+  const evidenceReferences = likeLayers(plane, evidence, random).map(ranksOf);
+  return (context) => {
+    const contextRanks = ranksOf(context);
+    // Random fields cannot stand in for a map of classes; there the evidence's own random fields are the comparison.
+    const contextReferences = context.length > 1 ? [] : likeLayers(plane, context, random).map(ranksOf);
+    const references = [...evidenceReferences.map((ranks) => correlation(ranks, contextRanks)), ...contextReferences.map((ranks) => correlation(evidenceRanks, ranks))];
+    const own = correlation(evidenceRanks, contextRanks);
+    const mean = references.reduce((sum, value) => sum + value, 0) / references.length;
+    const sd = Math.sqrt(references.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (references.length - 1));
+    return { correlation: own, excess: own - mean, deviations: (own - mean) / sd };
+  };
 }
 
-/** Edge strength of the cells at least the smoothing width inside the mask: root of the summed squared slopes. */
-function edgeMeter(plane: MaskedPlane, cellSizeM: number): (layers: readonly Float64Array[]) => Float64Array {
+/** Ranks of the edge strength of the cells at least the smoothing width inside the mask. */
+function edgeRanks(plane: MaskedPlane, cellSizeM: number): (layers: readonly Float64Array[]) => Float64Array {
   const smoother = maskedSmoother(plane, EDGE_SMOOTHING_M / cellSizeM);
   const interior = interiorCells(plane, Math.max(1, Math.round(EDGE_SMOOTHING_M / cellSizeM)));
   return (layers) => {
@@ -60,7 +57,7 @@ function edgeMeter(plane: MaskedPlane, cellSizeM: number): (layers: readonly Flo
       const slopes = gradientSquares(plane, smoother(layer));
       for (let i = 0; i < interior.length; i++) squares[i] = squares[i]! + slopes[interior[i]!]!;
     }
-    return squares.map(Math.sqrt);
+    return averageRanks(squares);
   };
 }
 
@@ -78,12 +75,16 @@ export function interiorCells({ width, height, mask }: MaskedPlane, depth: numbe
   return Uint32Array.from(inside.keys()).filter((cell) => inside[cell] === 1);
 }
 
-/** The field's ranks with the layer's values: as many cells at each value, so that a map's steps stay steps. */
-function withMarginalOf({ mask }: MaskedPlane, field: Float64Array, layer: Float64Array): Float64Array {
-  const cells = Uint32Array.from(mask.keys()).filter((cell) => mask[cell] === 1);
+/** Random fields with the layers' covariances and, by rank, each layer's own values: a map's steps stay steps. */
+function likeLayers(plane: MaskedPlane, layers: readonly Float64Array[], random: Random): Float64Array[][] {
+  const cells = Uint32Array.from(plane.mask.keys()).filter((cell) => plane.mask[cell] === 1);
+  const sorted = layers.map((layer) => Float64Array.from(cells, (cell) => layer[cell]!).sort());
+  return [...surrogateFields(surrogateModel(plane, layers), REFERENCES, random)].map((fields) => fields.map((field, l) => withValues(cells, field, sorted[l]!)));
+}
+
+function withValues(cells: Uint32Array, field: Float64Array, sorted: Float64Array): Float64Array {
   const order = cells.slice().sort((a, b) => field[a]! - field[b]!);
-  const values = Float64Array.from(cells, (cell) => layer[cell]!).sort();
-  const out = new Float64Array(mask.length);
-  order.forEach((cell, rank) => (out[cell] = values[rank]!));
+  const out = new Float64Array(field.length);
+  order.forEach((cell, rank) => (out[cell] = sorted[rank]!));
   return out;
 }

@@ -7,7 +7,7 @@
  */
 
 import { surrogateFields, surrogateModel } from './covarianceSurrogates.ts';
-import { quickKMeans } from './kmeans.ts';
+import { quickInertias } from './kmeans.ts';
 import { sampleIndices, type PointTable } from './kmeansPoints.ts';
 import type { Random } from './random.ts';
 import { calmFinder } from './verdictCalmCells.ts';
@@ -21,6 +21,7 @@ export interface GapOptions {
   readonly surrogates?: number;
   /** Calm cells that enter each k-means. */
   readonly sampleCount?: number;
+  /** Fresh starts beside the warm one. */
   readonly restarts?: number;
 }
 
@@ -37,7 +38,7 @@ export interface GapAtK {
 
 /** One row for each k = 2…6. */
 export function gapCurve(field: EvidenceField, options: GapOptions): GapAtK[] {
-  const { random, surrogates = 20, sampleCount = 1000, restarts = 3 } = options;
+  const { random, surrogates = 20, sampleCount = 1000, restarts = 1 } = options;
   const finder = calmFinder(field, { cellSizeM: field.cellSizeM });
   const logsOf = (layers: readonly Float64Array[]) => logWithinShares(sampled(layers, finder.find(layers), { sampleCount, random }), restarts, random);
   const own = logsOf(field.layers);
@@ -70,12 +71,8 @@ function sampled(layers: readonly Float64Array[], cells: Uint32Array, { sampleCo
 
 /** ln(W_k / W_1) for k = 2…6. Six different values at 0, .1, .2, 5, 5.1, 5.2 give −6.844 for two zones. */
 export function logWithinShares(points: PointTable, restarts: number, random: Random): { logs: number[]; count: number } {
-  const whole = quickKMeans(points, { k: 1, random, restarts: 1 }).inertia;
-  const logs: number[] = [];
-  for (let k = 2; k <= MOST_ZONES; k++) {
-    // Points that fall on k places leave nothing; the floor keeps the logarithm finite.
-    const share = whole > 0 ? quickKMeans(points, { k, random, restarts }).inertia / whole : 1;
-    logs.push(Math.log(Math.max(1e-12, share)));
-  }
+  const [whole, ...inertias] = quickInertias(points, MOST_ZONES, { random, restarts });
+  // Points that fall on k places leave nothing; the floor keeps the logarithm finite.
+  const logs = inertias.map((inertia) => (whole! > 0 ? Math.log(Math.max(1e-12, inertia / whole!)) : 0));
   return { logs, count: points.count };
 }

@@ -17,10 +17,19 @@ export interface ZoneCountAdvice {
 
 const CLOSE_SCORE = 0.1;
 
+export interface ZoneCountInput {
+  readonly curve: readonly GapAtK[];
+  readonly layerCount: number;
+  /** Numbers whose zones are all still there after clean-up; a zone without a patch large enough to work is no zone. */
+  readonly workable: readonly number[];
+}
+
 /** A tie goes to the smaller number: fewer zones are less work in the field. */
-export function adviseZoneCount(curve: readonly GapAtK[], layerCount: number): ZoneCountAdvice {
+export function adviseZoneCount({ curve, layerCount, workable }: ZoneCountInput): ZoneCountAdvice {
   const scores = curve.map(({ k, gap, separation }) => ({ k, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
-  const best = scores.reduce((most, row) => (row.score > most.score ? row : most));
-  const alsoOffer = scores.filter((row) => Math.abs(row.k - best.k) === 1 && best.score - row.score <= CLOSE_SCORE).map((row) => row.k);
+  const choice = scores.filter(({ k }) => workable.includes(k));
+  if (choice.length === 0) return { best: workable[0] ?? 2, alsoOffer: [], scores };
+  const best = choice.reduce((most, row) => (row.score > most.score ? row : most));
+  const alsoOffer = choice.filter((row) => Math.abs(row.k - best.k) === 1 && best.score - row.score <= CLOSE_SCORE).map((row) => row.k);
   return { best: best.k, alsoOffer, scores };
 }

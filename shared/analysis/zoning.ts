@@ -8,13 +8,15 @@
 import { polygonsArea } from '../geo/rings.ts';
 import { AnalysisError } from './analysisError.ts';
 import { assertCellCount } from './grid.ts';
+import { highestLabel } from './labels.ts';
 import { adviseLayers } from './layerAdvice.ts';
 import { polygonise } from './polygonise.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { MOST_ZONES } from './verdictGap.ts';
+import { adviseZoneCount } from './zoneCount.ts';
 import { cleanZones } from './zoningClean.ts';
 import { weighEvidence } from './zoningEvidence.ts';
-import { featureTable, fitZones, streamOf, zonesOnGrid } from './zoningFit.ts';
+import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones } from './zoningFit.ts';
 import { decideWeights, prepareLayers, weightedColumns } from './zoningPrepare.ts';
 import { rateFits } from './zoningQuality.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
@@ -55,13 +57,14 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
   mark('quality', 0.8);
   const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, orderBy: layers[0]!.cells }));
   mark('clean-up', 0.85);
-  const advisedK = evidence.verdict.verdict === 'one' ? 1 : evidence.count.best;
+  const count = adviseZoneCount({ ...evidence, workable: workableNumbers(cleaned) });
+  const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = cleaned.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(grid, labels) : null));
   mark('polygons', 0.95);
   const candidates = cleaned.map((zones, i) => candidateOf(i + 1, { grid, layers, zones, drawn: drawn[i]! }));
   mark('statistics', 0.98);
-  const fruit = fruitCheck(candidates[(chosenK > 1 ? chosenK : evidence.count.best) - 1]!, readings, options.seed);
+  const fruit = fruitCheck(candidates[(chosenK > 1 ? chosenK : count.best) - 1]!, readings, options.seed);
   mark('fruit', 1);
   return {
     engineVersion: ENGINE_VERSION,
@@ -72,10 +75,10 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
     verdict: withFruit(evidence.verdict, fruit),
     fruit,
     advisedK,
-    bestSeveral: evidence.count.best,
-    alsoOffer: evidence.count.alsoOffer,
+    bestSeveral: count.best,
+    alsoOffer: count.alsoOffer,
     chosenK,
-    evidence: evidenceRows(quality, evidence, candidates),
+    evidence: evidenceRows(quality, { curve: evidence.curve, scores: count.scores }, candidates),
     candidates,
     componentShares: table.componentShares,
     warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table })],
@@ -111,4 +114,9 @@ function fruitCheck({ labels }: ZoningCandidate, readings: readonly ZoningReadin
     readings: values.flatMap(({ cell, row, value }) => ((labels[cell] ?? 0) > 0 ? [{ value, row, zone: labels[cell]! }] : [])),
   }));
   return checkOnFruit(measures, streamOf(seed, FRUIT_STREAM));
+}
+
+/** Numbers above one whose zones have all survived clean-up. */
+function workableNumbers(cleaned: readonly CellZones[]): number[] {
+  return cleaned.flatMap(({ labels }, i) => (i > 0 && highestLabel(labels) === i + 1 ? [i + 1] : []));
 }

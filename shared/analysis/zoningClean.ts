@@ -19,6 +19,7 @@ export interface CleanOptions {
 
 /** Cells that clean-up moved to another zone count as wholly doubtful. */
 export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, orderBy }: CleanOptions): CellZones {
+  if (raw.labels.every((label) => label <= 1)) return raw;
   let cleaned: Labels = raw.labels;
   for (let pass = 0; pass < MAJORITY_PASSES; pass++) cleaned = majorityFiltered(cleaned, grid.cols);
   cleaned = sieveByBorder(cleaned, grid.cols, { minCells: cellsForArea(smallestPatchHa, grid.cellSizeM) });

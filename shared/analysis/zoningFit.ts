@@ -13,6 +13,9 @@ import { MOST_ZONES } from './verdictGap.ts';
 
 /** Cells that the fit is made on. */
 export const FIT_CELLS = 10_000;
+/** With more cells than the first the many starts run on a part of them. */
+const SEARCH_ALL_CELLS = 6000;
+const SEARCH_CELLS = 1500;
 
 /** A random stream of its own for each use of the seed, so that one stage does not shift the numbers of the next. */
 export function streamOf(seed: number, use: number): Random {
@@ -59,14 +62,17 @@ export interface ZoneFit {
   readonly doubt: Float32Array;
 }
 
-/** One fit for each k = 1…6. */
+/** One fit for each k = 1…6; each also starts from the zones of the one before. */
 export function fitZones({ points }: FeatureTable, seed: number): ZoneFit[] {
   const sample = selectPoints(points, sampleIndices(points.count, FIT_CELLS, streamOf(seed, 0)));
-  return Array.from({ length: MOST_ZONES }, (_, i) => {
-    const k = i + 1;
-    const { centres } = fitKMeans(sample, { k, random: streamOf(seed, k), restarts: 25 });
-    return { k, centres, ...nearestWithDoubt(points, centres) };
-  });
+  const searchCount = sample.count > SEARCH_ALL_CELLS ? SEARCH_CELLS : sample.count;
+  const fits: ZoneFit[] = [];
+  for (let k = 1; k <= MOST_ZONES; k++) {
+    const from = fits.at(-1)?.centres;
+    const { centres } = fitKMeans(sample, { k, random: streamOf(seed, k), restarts: 25, searchCount, ...(from === undefined ? {} : { from }) });
+    fits.push({ k, centres, ...nearestWithDoubt(points, centres) });
+  }
+  return fits;
 }
 
 /**
@@ -123,7 +129,8 @@ export function zonesOnGrid(grid: Grid, table: FeatureTable, fit: ZoneFit): Cell
     doubt[cell] = 1;
     labels[cell] = nearestByKnown(table.columns, means, { cell, k: fit.k });
   }
-  return { labels: withGapsFilled(grid, labels), doubt };
+  const isComplete = table.incomplete.every((cell) => labels[cell]! > 0);
+  return { labels: isComplete ? labels : withGapsFilled(grid, labels), doubt };
 }
 
 function columnMeans({ cells, columns }: FeatureTable, { labels, k }: ZoneFit): Float64Array[] {
@@ -153,22 +160,22 @@ function nearestByKnown(columns: readonly Float32Array[], means: readonly Float6
 }
 
 /** Cells inside without a zone take the zone of the nearest labelled cell, by steps to the four sides. */
-function withGapsFilled(grid: Grid, labels: Uint8Array): Uint8Array {
-  const out = labels.slice();
-  let front = Int32Array.from(out.keys()).filter((cell) => out[cell]! > 0);
-  while (front.length > 0) {
-    const next: number[] = [];
-    for (const cell of front) {
-      const col = cell % grid.cols;
-      for (const [step, isOnGrid] of [[-1, col > 0], [1, col < grid.cols - 1], [-grid.cols, cell >= grid.cols], [grid.cols, cell + grid.cols < out.length]] as const) {
-        const other = cell + step;
-        if (!isOnGrid || grid.inside[other] !== 1 || out[other]! > 0) continue;
-        out[other] = out[cell]!;
-        next.push(other);
-      }
+function withGapsFilled({ cols, inside }: Grid, labels: Uint8Array): Uint8Array {
+  let open = Int32Array.from(inside.keys()).filter((cell) => inside[cell] === 1 && labels[cell] === 0);
+  let filled = labels;
+  while (open.length > 0) {
+    const next = filled.slice();
+    for (const cell of open) {
+      const col = cell % cols;
+      const west = col > 0 ? filled[cell - 1]! : 0;
+      const east = col < cols - 1 ? filled[cell + 1]! : 0;
+      next[cell] = west || east || (filled[cell - cols] ?? 0) || (filled[cell + cols] ?? 0);
     }
-    front = Int32Array.from(next);
+    const left = open.filter((cell) => next[cell] === 0);
+    // A part of the block that no labelled cell touches at all stays one zone with its number, the first.
+    if (left.length === open.length) return filled.map((label, cell) => (label === 0 && inside[cell] === 1 ? 1 : label));
+    filled = next;
+    open = left;
   }
-  // A part of the block that no layer reaches at all stays one zone with its number, the first.
-  return out.map((label, cell) => (label === 0 && grid.inside[cell] === 1 ? 1 : label));
+  return filled;
 }

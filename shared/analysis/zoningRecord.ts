@@ -1,7 +1,7 @@
 /** Puts the outcome of the stages together into the rows of the zoning record. */
 
 import type { GapAtK } from './verdictGap.ts';
-import type { ZoningEvidence } from './zoningEvidence.ts';
+import type { ZoneCountAdvice } from './zoneCount.ts';
 import type { FeatureTable } from './zoningFit.ts';
 import type { FitQuality } from './zoningQuality.ts';
 import { describeZones, zoneDifferences, type ZoneStatsInput } from './zoningStats.ts';
@@ -13,7 +13,7 @@ export function candidateOf(k: number, input: ZoneStatsInput): ZoningCandidate {
 }
 
 /** One row for each k = 1…6: the figures of the fit, of the comparison with no structure, and of the cleaned zones. */
-export function evidenceRows(quality: readonly FitQuality[], { curve, count }: ZoningEvidence, candidates: readonly ZoningCandidate[]): ZoneEvidence[] {
+export function evidenceRows(quality: readonly FitQuality[], { curve, scores }: { curve: readonly GapAtK[]; scores: ZoneCountAdvice['scores'] }, candidates: readonly ZoningCandidate[]): ZoneEvidence[] {
   return quality.map((row, i) => {
     const zones = candidates[i]!.zones;
     const gap: GapAtK | undefined = curve.find(({ k }) => k === row.k);
@@ -21,7 +21,7 @@ export function evidenceRows(quality: readonly FitQuality[], { curve, count }: Z
       ...row,
       gap: gap?.gap ?? null,
       gapSd: gap?.gapSd ?? null,
-      score: count.scores.find(({ k }) => k === row.k)?.score ?? null,
+      score: scores.find(({ k }) => k === row.k)?.score ?? null,
       patches: zones.reduce((sum, zone) => sum + zone.patches, 0),
       smallestZoneHa: Math.min(...zones.map(({ areaM2 }) => areaM2)) / 10_000,
     };

@@ -3,7 +3,7 @@ import { rankCorrelation } from '../../shared/analysis/agreement.ts';
 import { gridOfOutline } from '../../shared/analysis/grid.ts';
 import { pointTable } from '../../shared/analysis/kmeansPoints.ts';
 import { adviseLayers, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
-import { edgeCoincidence, interiorCells } from '../../shared/analysis/layerAdviceEdges.ts';
+import { edgeComparison, interiorCells } from '../../shared/analysis/layerAdviceEdges.ts';
 import { principalComponents } from '../../shared/analysis/principal.ts';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { gradientSquares } from '../../shared/analysis/verdictCalmCells.ts';
@@ -36,7 +36,7 @@ describe('edges of two layers', () => {
     const square = { width: side, height: side, mask: new Uint8Array(side * side).fill(1) };
     const noise = Float64Array.from({ length: side * side }, () => randomNormal(random));
     const mirrored = noise.map((_, cell) => noise[Math.floor(cell / side) * side + side - 1 - (cell % side)]!);
-    const against = (context: Float64Array) => edgeCoincidence({ plane: square, cellSizeM: 4, evidence: [noise], context: [context] }, seededRandom(1));
+    const against = (context: Float64Array) => edgeComparison({ plane: square, cellSizeM: 4 }, [noise], seededRandom(1))([context]);
     expect(against(noise).correlation).toBeCloseTo(1, 12);
     expect(against(noise).deviations).toBeGreaterThan(3);
     expect(Math.abs(against(mirrored).correlation)).toBeLessThan(2 / Math.sqrt(side * side / 9));
@@ -85,18 +85,24 @@ describe('the number of zones', () => {
   const row = (k: number, gap: number, separation: number) => ({ k, gap, separation, gapSd: 0.1, withinShare: 0.1 });
 
   it('has the largest ln(Calinski–Harabasz) + gap, and close neighbours are offered', () => {
-    const advice = adviseZoneCount([row(2, 0.2, 100), row(3, 0.9, 150), row(4, 0.85, 152), row(5, 0.2, 100)], 2);
+    const advice = adviseZoneCount({ curve: [row(2, 0.2, 100), row(3, 0.9, 150), row(4, 0.85, 152), row(5, 0.2, 100)], layerCount: 2, workable: [2, 3, 4, 5] });
     expect(advice.best).toBe(3);
     expect(advice.alsoOffer).toEqual([4]);
     expect(advice.scores[1]!.score).toBeCloseTo(Math.log(150) + 0.9, 12);
   });
 
   it('goes by the gap alone for a single layer, where separation grows with every zone', () => {
-    expect(adviseZoneCount([row(2, 0.6, 100), row(3, 0.5, 300), row(4, 0.4, 900)], 1).best).toBe(2);
+    expect(adviseZoneCount({ curve: [row(2, 0.6, 100), row(3, 0.5, 300), row(4, 0.4, 900)], layerCount: 1, workable: [2, 3, 4] }).best).toBe(2);
   });
 
   it('takes the smaller number on a tie', () => {
-    expect(adviseZoneCount([row(2, 0.5, 100), row(3, 0.5, 100)], 2).best).toBe(2);
+    expect(adviseZoneCount({ curve: [row(2, 0.5, 100), row(3, 0.5, 100)], layerCount: 2, workable: [2, 3] }).best).toBe(2);
+  });
+
+  it('is never one whose zones clean-up would remove', () => {
+    const curve = [row(2, 0.5, 100), row(3, 0.9, 200), row(4, 0.8, 150)];
+    expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 4] })).toMatchObject({ best: 4, alsoOffer: [] });
+    expect(adviseZoneCount({ curve, layerCount: 2, workable: [] }).best).toBe(2);
   });
 });
 

@@ -32,7 +32,7 @@ const sources = files(join(root, 'src')).map((path) => ({ path: relative(root, p
 /** Keys asked for by name, and beginnings of keys that are put together ("frame.role."). */
 function keysAsked(code: string): { whole: string[]; beginnings: string[] } {
   const call = /(?<![\w$.])\$?(?:t|te|global\.t)\(\s*(?:'([^']+)'|"([^"]+)"|`([^`$]*)(\$\{)?)/g;
-  const strings = /[`'"]([a-z][A-Za-z]*\.[A-Za-z0-9.]+\.?)(\$\{|[`'"])/g;
+  const strings = /[`'"]([a-z][A-Za-z]*\.[A-Za-z0-9.]*)(\$\{|[`'"])/g;
   const whole: string[] = [];
   const beginnings: string[] = [];
   for (const match of [...code.matchAll(call), ...code.matchAll(/i18n\.global\.t\(\s*'([^']+)'/g)]) {

@@ -45,7 +45,10 @@ export interface RowPlace {
   readonly colours: StripColours;
 }
 
+/** Under so many px a vine single ticks are only grey; a tall bar carries finer ones. */
 const leastTickPx = 4;
+const leastTallTickPx = 3;
+const tallBarPx = 24;
 /** Where a bar carries no zone yet. */
 const bare = { fill: 'none', pattern: 'plain' as Pattern, mark: 'var(--muted)' };
 
@@ -79,7 +82,7 @@ function postBox(colour: string | null, x: number, { y, bar }: RowPlace): PostBo
 
 /** Under 4 px a vine, single ticks would only be grey: they are left out. */
 function ticksOf(row: StripRow, { y, bar, scale, colours }: RowPlace): TickPath[] {
-  if ((row.lengthM / Math.max(1, row.vineCount)) * scale.pxPerM < leastTickPx) return [];
+  if ((row.lengthM / Math.max(1, row.vineCount)) * scale.pxPerM < (bar >= tallBarPx ? leastTallTickPx : leastTickPx)) return [];
   const missing = new Set(row.missing);
   const [replant, offType] = [new Set(row.replant), new Set(row.offType)];
   const [top, bottom] = [y + bar * 0.2, y + bar * 0.8];

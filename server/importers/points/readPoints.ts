@@ -54,7 +54,7 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   questions.push(...placed.questions);
   return {
     ...base,
-    columns: describe(table, kept.map((row) => table.rows[row]!)),
+    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)),
     position: { first: table.names[columns.x]!, second: table.names[columns.y]!, frame: placed.frame },
     reference: placed.reference,
     epsg: placed.reference?.epsg ?? null,
@@ -123,6 +123,8 @@ function numericColumns(table: ParsedTable, mark: DecimalMark): string[] {
   return table.names.filter((_, i) => rows.filter((row) => !Number.isNaN(cellNumber(row[i] ?? '', mark).value)).length > rows.length / 2);
 }
 
+/** The first rows are enough to tell what a column holds. */
 function describe(table: ParsedTable, rows: readonly (readonly string[])[]) {
-  return table.names.map((name, i) => describeField(name, rows.slice(0, 50_000).map((row) => row[i] ?? '')));
+  const head = rows.slice(0, 5000);
+  return table.names.map((name, i) => describeField(name, head.map((row) => row[i] ?? '')));
 }

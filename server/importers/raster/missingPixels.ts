@@ -28,28 +28,59 @@ const HUGE = 1e30;
 
 /**
  * The block's bands with NaN in the first band wherever a rule says missing. NaN in one band drops the pixel from all.
- * Returns the bands untouched when no rule can apply, which is the usual and fast way.
+ * The bands come back untouched, and nothing is copied, when no rule applies to any pixel, which is the usual case.
  */
 export function withMissing(block: PictureBlock, rules: MissingRules): PictureBlock['bands'] {
-  const first = block.bands[0]!;
-  const isFloat = !(first.values instanceof Uint16Array);
-  if (rules.mask === null && block.alpha === null && !rules.dropDark && !(rules.dropHuge && isFloat)) return block.bands;
+  const tests = [hugeTest(block, rules), darkTest(block, rules), alphaTest(block), maskTest(block, rules)].filter((test) => test !== null);
   const pixels = block.storedCols * block.rows;
-  const marked = new Float64Array(pixels);
-  for (let pixel = 0; pixel < pixels; pixel++) marked[pixel] = first.values[pixel * first.stride + first.offset]!;
-  if (block.alpha !== null) {
-    const { values, offset, stride } = block.alpha;
-    for (let pixel = 0; pixel < pixels; pixel++) if (values[pixel * stride + offset] === 0) marked[pixel] = NaN;
+  let marked: Float64Array | null = null;
+  for (const isMissing of tests) {
+    for (let pixel = 0; pixel < pixels; pixel++) {
+      if (!isMissing(pixel)) continue;
+      marked ??= copyOfFirst(block, pixels);
+      marked[pixel] = NaN;
+    }
   }
-  for (const { values, offset, stride } of block.bands) {
-    if (rules.dropHuge && !(values instanceof Uint16Array)) for (let pixel = 0; pixel < pixels; pixel++) if (Math.abs(values[pixel * stride + offset]!) > HUGE) marked[pixel] = NaN;
-  }
-  if (rules.dropDark) for (let pixel = 0; pixel < pixels; pixel++) if (block.bands.every(({ values, offset, stride }) => values[pixel * stride + offset] === 0)) marked[pixel] = NaN;
-  if (rules.mask !== null) {
-    const seen = rules.mask.rect(block);
-    for (let row = 0; row < block.rows; row++) for (let col = 0; col < block.cols; col++) if (seen[row * block.cols + col] === 0) marked[row * block.storedCols + col] = NaN;
-  }
-  return [{ values: marked, offset: 0, stride: 1 }, ...block.bands.slice(1)];
+  return marked === null ? block.bands : [{ values: marked, offset: 0, stride: 1 }, ...block.bands.slice(1)];
+}
+
+type PixelTest = (pixel: number) => boolean;
+
+function copyOfFirst({ bands }: PictureBlock, pixels: number): Float64Array {
+  const { values, offset, stride } = bands[0]!;
+  const out = new Float64Array(pixels);
+  for (let pixel = 0; pixel < pixels; pixel++) out[pixel] = values[pixel * stride + offset]!;
+  return out;
+}
+
+function hugeTest({ bands }: PictureBlock, { dropHuge }: MissingRules): PixelTest | null {
+  const floats = dropHuge ? bands.filter(({ values }) => !(values instanceof Uint16Array)) : [];
+  if (floats.length === 0) return null;
+  return (pixel) => {
+    for (const { values, offset, stride } of floats) if (Math.abs(values[pixel * stride + offset]!) > HUGE) return true;
+    return false;
+  };
+}
+
+function darkTest({ bands }: PictureBlock, { dropDark }: MissingRules): PixelTest | null {
+  if (!dropDark) return null;
+  return (pixel) => {
+    for (const { values, offset, stride } of bands) if (values[pixel * stride + offset] !== 0) return false;
+    return true;
+  };
+}
+
+function alphaTest({ alpha }: PictureBlock): PixelTest | null {
+  return alpha === null ? null : (pixel) => alpha.values[pixel * alpha.stride + alpha.offset] === 0;
+}
+
+function maskTest(block: PictureBlock, { mask }: MissingRules): PixelTest | null {
+  if (mask === null) return null;
+  const seen = mask.rect(block);
+  return (pixel) => {
+    const col = pixel % block.storedCols;
+    return col < block.cols && seen[Math.floor(pixel / block.storedCols) * block.cols + col] === 0;
+  };
 }
 
 /** Cells of decoded mask blocks kept for the next tiles of the same row. */

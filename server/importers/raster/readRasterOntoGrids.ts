@@ -54,7 +54,7 @@ export function readRasterOntoGrids(input: string | Uint8Array, options: RasterR
       const sinks = request.grids.map((grid) => sinkOf(grid, understood, { method: request.quantity.kind === 'band' ? request.quantity.method : 'mean', bands: bands.length, noData }));
       if (sinks.every((sink) => sink.window === null)) throw notOverlapping(understood, request.grids);
       const unmarked = noData[0] === null;
-      const reader = await openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: true, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });
+      const reader = await openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: unmarked, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });
       await feed(reader, sinks, request);
       const readings = request.grids.map((grid, at) => finish(grid, sinks[at]!, { understood, bands, request }));
       if (readings.every(({ cells }) => cells.every(Number.isNaN))) throw noValues(readings.length);

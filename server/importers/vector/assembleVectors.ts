@@ -9,6 +9,7 @@ import { axesQuestion } from '../reference/axesQuestion.ts';
 import { cleanGeometry, noNotes } from './cleanGeometry.ts';
 import { describeField } from '../describeFields.ts';
 import type { RawLayer } from './rawLayer.ts';
+import { overlapWarnings } from './overlaps.ts';
 import { eachPosition, mapPositions } from './positions.ts';
 import { checkPolygon } from './repairPolygon.ts';
 import { layerWarnings, noteWarnings, repairWarning } from './vectorWarnings.ts';
@@ -98,6 +99,7 @@ async function finishLayer(layer: CleanLayer, { reference, options, warnings, re
   }
   const used = convert === null ? layer.features.filter(({ geometry }) => geometry !== null) : features;
   warnings.push(...layerWarnings(layer.name, { features, read: layer.features.length, used: used.length, crossing: new Set(repairs.filter((repair) => repair.layer === layer.name).map(({ feature }) => feature)) }));
+  if (!repairs.some((repair) => repair.layer === layer.name)) warnings.push(...(await overlapWarnings(layer.name, features)));
   const names = [...new Set(layer.features.flatMap(({ properties }) => Object.keys(properties)))].slice(0, limits.fields);
   return {
     name: layer.name,

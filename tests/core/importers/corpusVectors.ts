@@ -28,7 +28,12 @@ const geoJsonCases: CorpusCase[] = [
   json('an unclosed ring', () => collection([feature([squareLonLat.slice(0, 4)])]), accepted('closed-rings')),
   json('a byte-order mark', () => text(`\ufeff${new TextDecoder().decode(collection([square]))}`), accepted()),
   json('UTF-16', () => new Uint8Array(Buffer.from(`\ufeff${new TextDecoder().decode(collection([square]))}`, 'utf16le')), accepted()),
-  json('the same shape twice', () => collection([square, square]), accepted('doubled-shapes')),
+  json('the same shape twice', () => collection([square, square]), accepted('doubled-shapes', 'overlapping-shapes')),
+  json('soil units that overlap', () => collection([square, feature([squareLonLat.map(([x, y]) => [x + 0.0006, y])])]), accepted('overlapping-shapes')),
+  json('a soil unit inside another', () => collection([square, feature([hole])]), accepted('overlapping-shapes')),
+  json('a soil unit in the hole of another', () => collection([feature([squareLonLat, hole]), feature([hole])]), accepted()),
+  json('neighbours along one border', () => collection([square, feature([squareLonLat.map(([x, y]) => [x + 0.00126, y])])]), accepted()),
+  json('neighbours whose border was drawn twice', () => collection([square, feature([squareLonLat.map(([x, y]) => [x + 0.001259, y])])]), accepted()),
   json('an empty geometry beside a good one', () => collection([square, { type: 'Feature', properties: {}, geometry: null }]), accepted('empty-shapes')),
   json('a shape of two corners beside a good one', () => collection([square, feature([[[3.001, 44.703], [3.002, 44.703]]])]), accepted('empty-shapes', 'parts-dropped')),
   json('a shape smaller than a square metre', () => collection([feature([[[3.001, 44.703], [3.001001, 44.703], [3.001001, 44.703001], [3.001, 44.703]]])]), accepted('tiny-shapes')),
@@ -150,7 +155,7 @@ const track = (points: readonly (readonly [number, number])[]): Uint8Array => te
 
 const xmlCases: CorpusCase[] = [
   kmlFile('a KML polygon', () => text(placemark(polygonKml)), accepted('heights-dropped')),
-  kmlFile('KML with several shapes in one placemark', () => text(placemark(`<MultiGeometry>${polygonKml}${polygonKml}</MultiGeometry>`)), accepted('doubled-shapes', 'heights-dropped')),
+  kmlFile('KML with several shapes in one placemark', () => text(placemark(`<MultiGeometry>${polygonKml}${polygonKml}</MultiGeometry>`)), accepted('doubled-shapes', 'heights-dropped', 'overlapping-shapes')),
   kmlFile('a link to other files', () => text(placemark(polygonKml).replace('</Document>', '<NetworkLink><Link><href>http://example.invalid/x.kml</href></Link></NetworkLink></Document>')), accepted('heights-dropped', 'network-link')),
   kmlFile('KMZ', () => writeZip({ 'doc.kml': placemark(polygonKml) }), accepted('heights-dropped'), { fileName: 'blocks.kmz' }),
   kmlFile('a placemark without a shape', () => text(placemark('')), refused('no-layer', /usable coordinates|no placemarks/)),

@@ -33,7 +33,7 @@ const grids = [gridOfOutline([[[[500000, 4949900], [500080, 4949900], [500080, 4
 
 /** Ends in an answer or an ImportProblem, in time; anything else fails the test with the damage that caused it. */
 async function survives(bytes: Uint8Array, fileName: string, damage: string): Promise<void> {
-  const start = performance.now();
+  const start = process.cpuUsage();
   try {
     const understood = await understandFile(bytes, { fileName });
     if (understood.kind === 'raster' && understood.reference !== null) {
@@ -43,7 +43,8 @@ async function survives(bytes: Uint8Array, fileName: string, damage: string): Pr
     expect(error, damage).toBeInstanceOf(ImportProblem);
     expect((error as ImportProblem).message, damage).toMatch(/^[^:]+: .+\.$/s);
   }
-  expect(performance.now() - start, damage).toBeLessThan(5000);
+  const { user, system } = process.cpuUsage(start);
+  expect((user + system) / 1000, damage).toBeLessThan(5000);
 }
 
 describe('damage of every kind ends in an answer or a plain refusal', () => {

@@ -79,12 +79,12 @@ export const people: readonly DemoPerson[] = [
 ];
 
 export const tanks = [
-  { name: 'T1', litres: 12_000, workingFill: 0.8, minimumFill: 0.5 },
-  { name: 'T2', litres: 9_000, workingFill: 0.8, minimumFill: 0.5 },
-  { name: 'T3', litres: 9_000, workingFill: 0.85, minimumFill: 0.5 },
-  { name: 'T4', litres: 6_000, workingFill: 0.8, minimumFill: 0.4 },
-  { name: 'W1', litres: 5_000, workingFill: 0.9, minimumFill: 0.6 },
-  { name: 'W2', litres: 3_500, workingFill: 0.9, minimumFill: 0.6 },
+  { name: 'T1', litres: 32_000, workingFill: 0.8, minimumFill: 0.5 },
+  { name: 'T2', litres: 24_000, workingFill: 0.8, minimumFill: 0.5 },
+  { name: 'T3', litres: 18_000, workingFill: 0.85, minimumFill: 0.5 },
+  { name: 'T4', litres: 14_000, workingFill: 0.8, minimumFill: 0.4 },
+  { name: 'W1', litres: 12_000, workingFill: 0.9, minimumFill: 0.6 },
+  { name: 'W2', litres: 8_000, workingFill: 0.9, minimumFill: 0.6 },
 ] as const;
 
 export const demoPassword = 'patchrow-demo';

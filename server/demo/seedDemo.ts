@@ -6,6 +6,7 @@ import { seedEstate } from './seedEstate.ts';
 import { seedFruit } from './seedFruit.ts';
 import { seedLayers } from './seedLayers.ts';
 import { seedLots } from './seedLots.ts';
+import { seedPlans } from './seedPlans.ts';
 import { seedZones } from './seedZones.ts';
 
 const groundSeed = 7;
@@ -33,6 +34,8 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     await seedFruit(made, laid, { ground, days });
     step('zones');
     await seedZones(made, laid, options.now);
+    step('plans');
+    await seedPlans(made, laid, { days, now: options.now });
     step('lots');
     await seedLots(made, days);
   } catch (error) {

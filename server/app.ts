@@ -14,6 +14,7 @@ import { Missing, problemOf } from './errors.ts';
 import { log } from './log.ts';
 import { blockRoutes } from './routes/blocks.ts';
 import { describedApi } from './routes/openapi.ts';
+import { formatRoutes } from './routes/formats.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { harvestRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
@@ -81,6 +82,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
   api.get('/openapi.json', (_request, response) => void response.json(describedApi()));
   api.use(sessionRoutes({ passport, csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
   api.use(estateListRoutes());
+  api.use(formatRoutes());
   api.use('/estates/:estateId', estateGuard, makeEstateApi(config));
   api.use(() => {
     throw new Missing();

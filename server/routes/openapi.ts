@@ -14,6 +14,7 @@ import { blockRows, censusChange, numberingChange } from '../../shared/contracts
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { credentials, personChange, session } from '../../shared/contracts/session.ts';
+import { exportFormatLine, newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningLine, zoningView } from '../../shared/contracts/zonings.ts';
 
 interface Operation {
   method: 'get' | 'post' | 'put' | 'patch' | 'delete';
@@ -56,6 +57,24 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/estates/{estateId}/imports/{importId}/blocks', summary: 'Make blocks of outlines in a file, all or none', body: outlinesTaken, answer: outlinesMade },
   { method: 'delete', path: '/api/estates/{estateId}/imports/{importId}', summary: 'Take a line off the import desk' },
   { method: 'get', path: '/api/estates/{estateId}/files/{fileId}/download', summary: 'An original, byte for byte' },
+  { method: 'get', path: '/api/formats', summary: 'Formats that zones can be exported in', answer: z.object({ items: z.array(exportFormatLine), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/blocks/{blockId}/zonings', summary: 'Ask for a zoning; answers 202 with the job that computes it', body: newZoning, answer: z.object({ zoningId: z.uuid(), jobId: z.uuid() }) },
+  { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/zonings', summary: 'Zonings of a block, newest first', answer: z.object({ items: z.array(zoningLine), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/zonings', summary: 'Zonings of the estate, newest first (?block=)', answer: z.object({ items: z.array(zoningLine), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/zones', summary: 'Zones in force over the estate, as GeoJSON' },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}', summary: 'A zoning with verdict, evidence and zones (?zones= shows another number)', answer: zoningView },
+  { method: 'patch', path: '/api/estates/{estateId}/zonings/{zoningId}', summary: 'Name a zoning, or keep a number of its zones as a draft', body: zoningChange, answer: zoningView },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/labels', summary: 'Zone numbers cell by cell, a byte a cell; the grid is in the header x-grid-key' },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/edits', summary: 'Changes made by hand, in order', answer: z.object({ items: z.array(zoneEditLine), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/edits', summary: 'Change a draft by hand; 412 when somebody else did meanwhile', body: zoneEditRequest, answer: zoningView },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/undo', summary: 'Take the last change back', body: revisionOnly, answer: zoningView },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/redo', summary: 'Bring the last change taken back again', body: revisionOnly, answer: zoningView },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/effects', summary: 'What publishing a draft would touch', answer: publishEffects },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/compare', summary: 'Two zonings of a block vine by vine (?with=)', answer: zoningComparison },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/publish', summary: 'Put a draft in force; the zones in force are retired', body: publishRequest, answer: zoningView },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/restore', summary: 'Take zones up again as a new draft', answer: z.object({ id: z.uuid() }) },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/export', summary: 'Zones as a file (?format= one of /api/formats, ?zones=)' },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/report', summary: 'A zoning on paper, as PDF (?size=A4 or Letter, ?zones=)' },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/plan-basis', summary: 'What a plan on these zones is computed from', answer: planBasis },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/plans', summary: 'Make a sampling plan and draw its vines', body: newPlan, answer: planView },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}', summary: 'A plan with its vines', answer: planView },

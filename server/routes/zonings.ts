@@ -4,14 +4,18 @@ import { id } from '../../shared/contracts/common.ts';
 import { newZoning, publishRequest, revisionOnly, zoneEditRequest, zoningChange } from '../../shared/contracts/zonings.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '../services/zonings/editZones.ts';
+import { exportZones } from '../services/zonings/exportZones.ts';
 import { liveZones } from '../services/zonings/liveZones.ts';
 import { nameZoning } from '../services/zonings/nameZoning.ts';
 import { compareZonings, publishEffects, publishZones } from '../services/zonings/publish.ts';
+import { reportZoning } from '../services/zonings/reportZoning.ts';
 import { requestZoning } from '../services/zonings/request.ts';
 import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
 
 const shownQuery = z.object({ zones: z.coerce.number().int().min(1).max(6).optional() });
 const listQuery = z.object({ block: id.optional() });
+const exportQuery = shownQuery.extend({ format: z.string() });
+const reportQuery = shownQuery.extend({ size: z.enum(['A4', 'Letter']).default('A4') });
 const compareQuery = z.object({ with: id });
 
 /** Zonings: asked for, read, kept as a draft, changed by hand, published. */
@@ -66,6 +70,16 @@ export function zoningRoutes(): Router {
   });
   router.get('/zonings/:zoningId/compare', allow('estate.see', 'read'), async (request, response) => {
     response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), compareQuery.parse(request.query).with));
+  });
+  router.get('/zonings/:zoningId/export', allow('exports.make'), async (request, response) => {
+    const { format, zones = null } = exportQuery.parse(request.query);
+    const file = await exportZones(accessOf(request), idParam(request, 'zoningId'), { format, zones });
+    response.set('content-type', file.type).attachment(file.name).send(file.body);
+  });
+  router.get('/zonings/:zoningId/report', allow('exports.make'), async (request, response) => {
+    const { size, zones = null } = reportQuery.parse(request.query);
+    const file = await reportZoning(accessOf(request), idParam(request, 'zoningId'), { size, zones, now: new Date() });
+    response.type('application/pdf').attachment(file.name).send(file.body);
   });
   router.post('/zonings/:zoningId/publish', allow('zones.publish'), async (request, response) => {
     await publishZones(accessOf(request), idParam(request, 'zoningId'), { ...publishRequest.parse(request.body), now: new Date() });

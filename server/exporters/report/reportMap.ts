@@ -1,0 +1,155 @@
+import { boundsOf } from '../../../shared/geo/bounds.ts';
+import type { MultiPolygonXY, RingXY, XY } from '../../../shared/geo/coordinates.ts';
+import { polygonsCentroid, polygonsArea } from '../../../shared/geo/rings.ts';
+import { convergenceDeg, fromUtm, polygonsToUtm } from '../../../shared/geo/utm.ts';
+import { ink, type Page } from './reportPage.ts';
+import type { ZoneReport } from './zoneReport.ts';
+
+interface Box {
+  x: number;
+  y: number;
+  width: number;
+  height: number;
+}
+
+type ToPaper = (point: XY) => [number, number];
+
+/** Marks of the zones on paper, so that grey print tells them apart; past six they repeat and the number decides. */
+const patterns: ((page: Page, box: Box) => void)[] = [
+  () => undefined,
+  (page, box) => hatch(page, box, 1),
+  dots,
+  (page, box) => {
+    level(page, box);
+    upright(page, box);
+  },
+  (page, box) => hatch(page, box, -1),
+  level,
+];
+const gap = 6;
+
+/** The zones as vectors with their marks and numbers, the outline, a scale bar and an arrow to true north. */
+export function drawMap(page: Page, report: ZoneReport, box: Box): void {
+  const outline = polygonsToUtm(report.boundary, report.epsg);
+  const zones = report.zones.map((zone) => ({ number: zone.number, shape: polygonsToUtm(zone.polygonsLonLat, report.epsg) }));
+  const { toPaper, metresPerPoint } = frame(outline, { ...box, width: box.width - 60 });
+  for (const { number, shape } of zones) {
+    page.save();
+    trace(page, shape, toPaper);
+    page.clip('even-odd');
+    drawMarks(page, number, box);
+    page.restore();
+  }
+  for (const { shape } of zones) {
+    trace(page, shape, toPaper);
+    page.lineWidth(0.9).strokeColor(ink).stroke();
+  }
+  trace(page, outline, toPaper);
+  page.lineWidth(1.6).strokeColor(ink).stroke();
+  for (const { number, shape } of zones) drawNumber(page, number, toPaper(spotFor(shape)));
+  const right = box.x + box.width;
+  const [middleX, middleY] = polygonsCentroid(outline);
+  drawNorth(page, { x: right - 20, y: box.y + 30, turnDeg: -convergenceDeg(fromUtm([middleX, middleY], report.epsg), report.epsg), letter: 'N' });
+  drawScale(page, { right, bottom: box.y + box.height, metresPerPoint, units: report.units });
+}
+
+/** The mark of a zone in a box, for map and legend. */
+export function drawMarks(page: Page, number: number, box: Box): void {
+  page.lineWidth(0.6).strokeColor('#4A555B').fillColor('#4A555B');
+  patterns[(number - 1) % patterns.length]!(page, box);
+}
+
+export function drawSwatch(page: Page, number: number, box: Box): void {
+  page.save();
+  page.rect(box.x, box.y, box.width, box.height).clip();
+  drawMarks(page, number, box);
+  page.restore();
+  page.rect(box.x, box.y, box.width, box.height).lineWidth(0.8).strokeColor(ink).stroke();
+}
+
+function frame(outline: MultiPolygonXY, box: Box): { toPaper: ToPaper; metresPerPoint: number } {
+  const [west, south, east, north] = boundsOf(outline.flat());
+  const metresPerPoint = Math.max((east - west) / box.width, (north - south) / box.height);
+  const left = box.x + (box.width - (east - west) / metresPerPoint) / 2;
+  const top = box.y + (box.height - (north - south) / metresPerPoint) / 2;
+  return { metresPerPoint, toPaper: ([x, y]) => [left + (x - west) / metresPerPoint, top + (north - y) / metresPerPoint] };
+}
+
+function trace(page: Page, shape: MultiPolygonXY, toPaper: ToPaper): void {
+  for (const ring of shape.flat()) {
+    ring.forEach((point, index) => {
+      const [x, y] = toPaper(point);
+      if (index === 0) page.moveTo(x, y);
+      else page.lineTo(x, y);
+    });
+    page.closePath();
+  }
+}
+
+function hatch(page: Page, { x, y, width, height }: Box, direction: 1 | -1): void {
+  for (let shift = -height; shift < width + height; shift += gap * Math.SQRT2) {
+    if (direction === 1) page.moveTo(x + shift, y + height).lineTo(x + shift + height, y);
+    else page.moveTo(x + shift, y).lineTo(x + shift + height, y + height);
+  }
+  page.stroke();
+}
+
+function level(page: Page, { x, y, width, height }: Box): void {
+  for (let shift = gap / 2; shift < height; shift += gap) page.moveTo(x, y + shift).lineTo(x + width, y + shift);
+  page.stroke();
+}
+
+function upright(page: Page, { x, y, width, height }: Box): void {
+  for (let shift = gap / 2; shift < width; shift += gap) page.moveTo(x + shift, y).lineTo(x + shift, y + height);
+  page.stroke();
+}
+
+function dots(page: Page, { x, y, width, height }: Box): void {
+  for (let down = gap / 2, line = 0; down < height; down += gap, line++) {
+    for (let across = line % 2 === 0 ? gap / 4 : (3 * gap) / 4; across < width; across += gap) page.circle(x + across, y + down, 0.8);
+  }
+  page.fill();
+}
+
+/** A place inside the largest part: the middle of the widest stretch at the height of its centre. */
+function spotFor(shape: MultiPolygonXY): XY {
+  const largest = shape.reduce((best, polygon) => (polygonsArea([polygon]) > polygonsArea([best]) ? polygon : best));
+  const [, y] = polygonsCentroid([largest]);
+  const crossings = largest.flatMap((ring) => crossingsAt(ring, y)).sort((a, b) => a - b);
+  let best: [number, number] = [crossings[0] ?? largest[0]![0]![0], crossings[1] ?? largest[0]![0]![0]];
+  for (let at = 0; at + 1 < crossings.length; at += 2) if (crossings[at + 1]! - crossings[at]! > best[1] - best[0]) best = [crossings[at]!, crossings[at + 1]!];
+  return [(best[0] + best[1]) / 2, y];
+}
+
+function crossingsAt(ring: RingXY, y: number): number[] {
+  return ring.slice(1).flatMap(([bx, by], index) => {
+    const [ax, ay] = ring[index]!;
+    return ay > y !== by > y ? [ax + ((y - ay) / (by - ay)) * (bx - ax)] : [];
+  });
+}
+
+function drawNumber(page: Page, number: number, [x, y]: [number, number]): void {
+  page.circle(x, y, 9).fillAndStroke('white', ink);
+  page.font('bold').fontSize(10).fillColor(ink).text(String(number), x - 9, y - 7, { width: 18, align: 'center', lineBreak: false });
+}
+
+function drawNorth(page: Page, { x, y, turnDeg, letter }: { x: number; y: number; turnDeg: number; letter: string }): void {
+  page.save().rotate(turnDeg, { origin: [x, y] });
+  page.moveTo(x, y - 18).lineTo(x + 6, y + 12).lineTo(x, y + 7).lineTo(x - 6, y + 12).closePath().fill(ink);
+  page.restore();
+  page.font('bold').fontSize(9).fillColor(ink).text(letter, x - 10, y - 32, { width: 20, align: 'center', lineBreak: false });
+}
+
+const metresPerFoot = 0.3048;
+
+/** A bar of a round length, at most about 90 points long. */
+function drawScale(page: Page, { right, bottom, metresPerPoint, units }: { right: number; bottom: number; metresPerPoint: number; units: 'metric' | 'us' }): void {
+  const unitM = units === 'us' ? metresPerFoot : 1;
+  const most = (90 * metresPerPoint) / unitM;
+  const power = 10 ** Math.floor(Math.log10(most));
+  const length = [5, 2, 1].map((step) => step * power).find((value) => value <= most) ?? power;
+  const width = (length * unitM) / metresPerPoint;
+  page.rect(right - width, bottom - 6, width / 2, 4).fillAndStroke(ink, ink);
+  page.rect(right - width / 2, bottom - 6, width / 2, 4).fillAndStroke('white', ink);
+  page.font('plain').fontSize(8).fillColor(ink).text(`${length} ${units === 'us' ? 'ft' : 'm'}`, right - 100, bottom - 19, { width: 100, align: 'right', lineBreak: false });
+}

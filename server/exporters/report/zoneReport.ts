@@ -1,0 +1,54 @@
+import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import type { ReportLanguage } from './reportTexts.ts';
+
+/** What the printed report of a zoning is made from. */
+export interface ZoneReport {
+  language: ReportLanguage;
+  units: 'metric' | 'us';
+  size: 'A4' | 'Letter';
+  today: Date;
+  timeZone: string;
+  estateName: string;
+  blockName: string;
+  number: number;
+  name: string;
+  state: string;
+  madeAt: Date;
+  verdict: 'one' | 'test' | 'several' | null;
+  isJudged: boolean;
+  advisedZones: number | null;
+  reasons: readonly { code: string; about: string | null }[];
+  layers: readonly ReportLayer[];
+  differences: readonly { layerId: string; lowest: number; highest: number; withinSd: number }[];
+  zones: readonly ReportZone[];
+  boundary: MultiPolygonLonLat;
+  epsg: number;
+  cellSizeM: number;
+  engineVersion: string;
+  seed: number;
+  smoothingM: number;
+  smallestPatchHa: number;
+}
+
+export interface ReportLayer {
+  layerId: string;
+  name: string;
+  unit: string;
+  decimals: number;
+  measuredOn: string | null;
+  isContext: boolean;
+  weight: number;
+  advised: number | null;
+  /** Who answers for a layer with red findings, and why. */
+  override: { by: string; reason: string } | null;
+}
+
+export interface ReportZone {
+  number: number;
+  name: string;
+  areaM2: number;
+  vines: number;
+  missing: number;
+  means: readonly { layerId: string; mean: number | null; sd: number | null }[];
+  polygonsLonLat: MultiPolygonLonLat;
+}

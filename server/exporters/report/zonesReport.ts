@@ -1,0 +1,144 @@
+import { drawMap, drawSwatch } from './reportMap.ts';
+import { closePage, faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, printable, table, type Column, type Page } from './reportPage.ts';
+import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
+import type { ReportLayer, ZoneReport } from './zoneReport.ts';
+
+/** So that a block of two zones and two layers fills one page. */
+const mapHeights = { A4: 270, Letter: 215 };
+const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
+
+/** The report of a zoning as PDF, for people without the program: verdict, map with marks that print in grey, zones, layers, limits. */
+export function zonesReport(report: ZoneReport): Promise<Buffer> {
+  const words = wordsOf(report);
+  const title = filled(words.texts.title as string, { block: report.blockName });
+  const page = openPage({ size: report.size, title, at: report.today });
+  page.font('bold').fontSize(20).text(printable(title), margin, margin);
+  page.font('plain').fontSize(9).fillColor(faint).text(printable(filled(words.texts.line as string, { estate: report.estateName, number: report.number, name: report.name ? ` “${report.name}”` : '', state: stateOf(report, words).toLowerCase(), day: words.day(report.madeAt) })));
+  page.moveDown(0.8);
+  const verdict = verdictOf(report, words.texts);
+  if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(printable(verdict));
+  page.moveDown(0.4);
+  const mapTop = page.y;
+  const mapHeight = mapHeights[report.size];
+  drawMap(page, report, { x: margin, y: mapTop, width: innerWidth(page), height: mapHeight });
+  page.x = margin;
+  page.y = mapTop + mapHeight + 6;
+  zoneTable(page, report, words);
+  if (report.reasons.length > 0) {
+    heading(page, words.texts.why as string);
+    paragraph(page, [...reasonsOf(report, words.texts), ...differencesOf(report, words)].join(' '));
+  }
+  layerTable(page, report, words);
+  limits(page, report, words);
+  footers(page, report, words);
+  return closePage(page);
+}
+
+interface Words {
+  texts: ReportTexts;
+  figure: (value: number, decimals: number) => string;
+  day: (at: Date) => string;
+  length: (metres: number, decimals: number) => string;
+}
+
+function wordsOf({ language, units, timeZone }: ZoneReport): Words {
+  const figure = (value: number, decimals: number) => new Intl.NumberFormat(language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+  return {
+    texts: reportTexts[language],
+    figure,
+    day: (at) => new Intl.DateTimeFormat(language, { dateStyle: 'long', timeZone }).format(at),
+    length: (metres, decimals) => (units === 'us' ? `${figure(metres / 0.3048, decimals)} ft` : `${figure(metres, decimals)} m`),
+  };
+}
+
+function stateOf({ state }: ZoneReport, { texts }: Words): string {
+  return texts.stateOf[state] ?? state;
+}
+
+function verdictOf({ verdict, isJudged, advisedZones }: ZoneReport, texts: ReportTexts): string | null {
+  if (verdict === null) return null;
+  const count = advisedZones ?? 1;
+  const text = verdict === 'one' || count > 1 ? texts.verdict[verdict]! : texts.verdict[`${verdict}One`]!;
+  const said = filled(text, { zones: texts.inWords[count - 1] ?? count });
+  return isJudged ? said : `${said} ${texts.verdict.notJudged}`;
+}
+
+function reasonsOf({ reasons, layers }: ZoneReport, texts: ReportTexts): string[] {
+  return reasons.map(({ code, about }) => filled(texts.reason[code] ?? '', { about: layers.find(({ layerId }) => layerId === about)?.name ?? about ?? '' })).filter((text) => text !== '');
+}
+
+function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figure }: Words): string[] {
+  if (zones.length < 2) return [];
+  return differences.flatMap(({ layerId, lowest, highest, withinSd }) => {
+    const layer = layers.find((candidate) => candidate.layerId === layerId);
+    if (!layer) return [];
+    const unit = layer.unit ? ` ${layer.unit}` : '';
+    return [filled(texts.difference as string, { layer: layer.name, lowest: figure(lowest, layer.decimals), highest: figure(highest, layer.decimals), within: figure(withinSd, layer.decimals), unit })];
+  });
+}
+
+/** Layers that the table of zones has room for. */
+const shownLayers = 2;
+
+function zoneTable(page: Page, report: ZoneReport, { texts, figure }: Words): void {
+  const { unit, each } = squareMetres[report.units];
+  const total = report.zones.reduce((sum, zone) => sum + zone.areaM2, 0);
+  const layers = report.layers.filter((layer) => layer.weight > 0).slice(0, shownLayers);
+  const columns: Column[] = [
+    { head: texts.zone as string, share: 5 },
+    { head: `${texts.area as string}, ${unit}`, share: 2, isFigure: true },
+    { head: `${texts.share as string}, %`, share: 2, isFigure: true },
+    { head: texts.vines as string, share: 2, isFigure: true },
+    { head: texts.missing as string, share: 2, isFigure: true },
+    ...layers.map((layer) => ({ head: layer.unit ? `${layer.name}, ${layer.unit}` : layer.name, share: 3, isFigure: true })),
+  ];
+  const lines = report.zones.map((zone) => [
+    zone.name ? `${zone.number}  ${zone.name}` : filled(texts.zoneN as string, { n: zone.number }),
+    figure(zone.areaM2 / each, 2),
+    figure((100 * zone.areaM2) / total, 0),
+    figure(zone.vines, 0),
+    figure(zone.missing, 0),
+    ...layers.map((layer) => meanOf(zone.means.find(({ layerId }) => layerId === layer.layerId), layer, figure)),
+  ]);
+  heading(page, texts.zones as string);
+  table(page, columns, lines, { width: 30, draw: (line, x, y) => drawSwatch(page, report.zones[line]!.number, { x, y: y + 1, width: 22, height: 10 }) });
+}
+
+function meanOf(stats: { mean: number | null; sd: number | null } | undefined, layer: ReportLayer, figure: Words['figure']): string {
+  if (!stats || stats.mean === null) return '–';
+  return stats.sd === null ? figure(stats.mean, layer.decimals) : `${figure(stats.mean, layer.decimals)} ± ${figure(stats.sd, layer.decimals)}`;
+}
+
+function layerTable(page: Page, report: ZoneReport, { texts, figure, day }: Words): void {
+  if (report.layers.length === 0) return;
+  heading(page, texts.layers as string);
+  const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }];
+  table(page, columns, report.layers.map((layer) => [
+    layer.isContext ? `${layer.name} (${texts.context as string})` : layer.name,
+    layer.measuredOn === null ? '–' : day(new Date(`${layer.measuredOn}T12:00:00Z`)),
+    figure(layer.weight, 2),
+    layer.advised === null ? '–' : figure(layer.advised, 2),
+  ]));
+  page.moveDown(0.4);
+  for (const layer of report.layers) if (layer.override) paragraph(page, filled(texts.override as string, { layer: layer.name, ...layer.override }));
+}
+
+function limits(page: Page, report: ZoneReport, { texts, length }: Words): void {
+  keepRoom(page, 70);
+  heading(page, texts.limits as string);
+  const tested = report.reasons.some(({ code }) => code.startsWith('fruit-'));
+  paragraph(page, [texts.saysNothing, ...(tested ? [] : [texts.untested]), filled(texts.border as string, { cell: length(report.cellSizeM, 1) }), texts.estimate].join(' '));
+}
+
+/** The same foot on every page, written when the number of pages is known. */
+function footers(page: Page, report: ZoneReport, { texts, figure, day, length }: Words): void {
+  const { unit, each } = squareMetres[report.units];
+  const text = filled(texts.footer as string, { today: day(report.today), engine: report.engineVersion, seed: report.seed, smoothing: length(report.smoothingM, 1), patch: `${figure((report.smallestPatchHa * 10_000) / each, 2)} ${unit}` });
+  const { start, count } = page.bufferedPageRange();
+  for (let at = start; at < start + count; at++) {
+    page.switchToPage(at);
+    // The foot lies in the margin, where text would begin a new page.
+    page.page.margins.bottom = 0;
+    page.font('plain').fontSize(7.5).fillColor(faint).text(printable(`${text}  ${at + 1}/${count}`), margin, page.page.height - 36, { width: innerWidth(page), lineBreak: false });
+  }
+}

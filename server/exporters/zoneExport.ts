@@ -1,0 +1,35 @@
+import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
+
+/** What every format of zones is written from: plain facts, no rows of the database. */
+export interface ZoneExport {
+  estateName: string;
+  blockName: string;
+  zoningNumber: number;
+  zoningName: string;
+  state: string;
+  /** Instant the zones were made. */
+  madeAt: Date;
+  zones: readonly ExportedZone[];
+  /** Runs of vines along the rows, in the block's own numbers. */
+  runs: readonly ExportedRun[];
+  cells: { labels: Uint8Array; cols: number; rows: number; cellSizeM: number; epsg: number; x0: number; y0: number };
+}
+
+export interface ExportedZone {
+  number: number;
+  /** Empty while nobody has named it. */
+  name: string;
+  colour: string | null;
+  areaM2: number;
+  vines: number;
+  missing: number;
+  polygonsLonLat: MultiPolygonLonLat;
+}
+
+export interface ExportedRun {
+  rowLabel: string;
+  fromVine: number;
+  toVine: number;
+  zone: number;
+  zoneName: string;
+}

@@ -1,0 +1,58 @@
+import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
+import type { ExportFormatLine } from '../../../shared/contracts/zonings.ts';
+import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import { vineLabel } from '../../../shared/geo/numbering.ts';
+import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, Unusable } from '../../errors.ts';
+import { exportFormats } from '../../exporters/formats.ts';
+import type { ExportedRun, ExportedZone, ZoneExport } from '../../exporters/zoneExport.ts';
+import { gridOf, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { requireSameOutline } from './editZones.ts';
+import { fileName } from './fileName.ts';
+import { readLabels, viewZoning } from './view.ts';
+
+/** Formats that zones can leave in, for menus. */
+export function listFormats(): ExportFormatLine[] {
+  return exportFormats.map(({ id, mediaType, extension }) => ({ id, mediaType, extension }));
+}
+
+/** Zones as a file: those kept, or of a proposal the number asked for. Who took what away is noted. */
+export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null }): Promise<{ name: string; type: string; body: Buffer }> {
+  const format = exportFormats.find(({ id }) => id === asked.format);
+  if (!format) throw new Unusable('unknownFormat', `There is no format "${asked.format}". Choose one of ${exportFormats.map(({ id }) => id).join(', ')}.`);
+  const input = await exportInput(access, zoningId, asked.zones);
+  const body = format.write(input);
+  await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
+  return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`], format.extension), type: format.mediaType, body };
+}
+
+async function exportInput(access: Access, zoningId: string, zones: number | null): Promise<ZoneExport> {
+  const view = await viewZoning(access, zoningId, zones);
+  if (view.zones.length === 0) throw new Clash('notReady', 'This zoning has no zones that could be exported.');
+  const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
+  const estate = await Estate.query().findById(access.estateId).throwIfNotFound();
+  const ground = await loadBlockVines(access.estateId, view.blockId);
+  requireSameOutline(zoning, ground);
+  const { labels } = await readLabels(access, zoningId, view.shown);
+  const { cols, rows, cellSizeM, epsg, x0, y0 } = gridOf(ground);
+  const exported: ExportedZone[] = view.zones.map(({ number, name, colour, areaM2, vines, missing, geometry }) => ({ number, name, colour, areaM2, vines, missing, polygonsLonLat: geometry.coordinates as unknown as MultiPolygonLonLat }));
+  return {
+    estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, madeAt: zoning.createdAt,
+    zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 },
+  };
+}
+
+/** Runs along the rows in the numbers that the posts carry. */
+function runsOf(ground: BlockVines, zones: readonly ExportedZone[], labels: Uint8Array): ExportedRun[] {
+  const zoneOf = zonesOfVines(ground, { labels: Buffer.from(encodeCells(labels)), gridKey: gridOf(ground).key });
+  return rowRuns(ground.vines, zoneOf)
+    .filter(({ label }) => label > 0)
+    .map(({ rowIndex, fromOrdinal, toOrdinal, label }) => {
+      const ends = [fromOrdinal, toOrdinal].map((ordinal) => vineLabel(ground.rows.rows[rowIndex]!, ordinal, ground.block.vineOneEnd));
+      return { rowLabel: ground.stored[rowIndex]!.label, fromVine: Math.min(...ends), toVine: Math.max(...ends), zone: label, zoneName: zones.find(({ number }) => number === label)?.name ?? '' };
+    });
+}

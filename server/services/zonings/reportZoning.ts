@@ -1,0 +1,50 @@
+import { layerType } from '../../../shared/catalog/layerTypes.ts';
+import type { ZoningView } from '../../../shared/contracts/zonings.ts';
+import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash } from '../../errors.ts';
+import { reportTexts, type ReportLanguage } from '../../exporters/report/reportTexts.ts';
+import type { ReportLayer } from '../../exporters/report/zoneReport.ts';
+import { zonesReport } from '../../exporters/report/zonesReport.ts';
+import { loadBlockVines } from '../../ground/blockVines.ts';
+import { loadBlockLayers } from '../../ground/zoneLayers.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
+import { Person } from '../../models/Person.ts';
+import { Zoning } from '../../models/Zoning.ts';
+import { requireSameOutline } from './editZones.ts';
+import { fileName } from './fileName.ts';
+import { viewZoning } from './view.ts';
+
+/** A zoning on paper, in the language and units of whoever prints it. */
+export async function reportZoning(access: Access, zoningId: string, asked: { size: 'A4' | 'Letter'; zones: number | null; now: Date }): Promise<{ name: string; body: Buffer }> {
+  const view = await viewZoning(access, zoningId, asked.zones);
+  if (view.zones.length === 0) throw new Clash('notReady', 'This zoning has no zones that could be printed.');
+  const [estate, person, zoning] = await Promise.all([
+    Estate.query().findById(access.estateId).throwIfNotFound(),
+    Person.query().findById(access.personId).throwIfNotFound(),
+    Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound(),
+  ]);
+  const ground = await loadBlockVines(access.estateId, view.blockId);
+  requireSameOutline(zoning, ground);
+  const { verdict, isJudged, advisedZones, reasons, differences, engineVersion, seed, number, name, state, blockName } = view;
+  const body = await zonesReport({
+    language: person.language in reportTexts ? (person.language as ReportLanguage) : 'en',
+    units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
+    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, reasons, differences, engineVersion, seed,
+    layers: await layersOf(access, view),
+    zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
+    boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: ground.block.cellSizeM,
+    smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa,
+  });
+  await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });
+  return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };
+}
+
+async function layersOf(access: Access, view: ZoningView): Promise<ReportLayer[]> {
+  const placed = await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId));
+  return view.layers.map(({ layerId, name, unit, type, measuredOn, role, weight, advised }) => {
+    const override = placed.find(({ layer }) => layer.id === layerId)?.placed.override ?? null;
+    return { layerId, name, unit, decimals: layerType(type).decimals, measuredOn, isContext: role === 'context', weight, advised: advised?.weight ?? null, override: override && { by: override.by, reason: override.reason } };
+  });
+}

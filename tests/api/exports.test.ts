@@ -1,0 +1,298 @@
+import { execFileSync } from 'node:child_process';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { strFromU8, unzipSync } from 'fflate';
+import type { FeatureCollection, MultiPolygon, Position } from 'geojson';
+import { fromArrayBuffer } from 'geotiff';
+import Papa from 'papaparse';
+import * as shapefiles from 'shpjs';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { polygonsToUtm } from '../../shared/geo/utm.ts';
+import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
+import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
+import type { ZoneOperation, ZoningView } from '../../shared/contracts/zonings.ts';
+import { gridOf } from '../../server/ground/blockVines.ts';
+import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { BlockLayer } from '../../server/models/BlockLayer.ts';
+import { Person } from '../../server/models/Person.ts';
+import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { makePlateauBlock, workOnZoning, type PlateauBlock } from './support/makePlateauBlock.ts';
+import { outline, place } from './support/shapes.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+
+/** The reader's declared types name only the part that the importers use. */
+const shp = (shapefiles as unknown as { default: (zip: ArrayBuffer) => Promise<FeatureCollection<MultiPolygon>> }).default;
+
+let app: TestApp;
+let base: string;
+let manager: Agent;
+let managerId: string;
+let plot: PlateauBlock;
+let zoningId: string;
+let seen: ZoningView;
+let folder: string;
+
+const names = ['=HYPERLINK("x")', 'Ødegård–Šípek "Süd", 丘'];
+
+beforeAll(async () => {
+  app = await startTestApp();
+  openComputePool(1);
+  folder = mkdtempSync(join(tmpdir(), 'patchrow-exports-'));
+  const { estateId, ownerId, ownerEmail } = await app.addEstate('Exports test');
+  base = `/api/estates/${estateId}`;
+  plot = await makePlateauBlock({ estateId, personId: ownerId });
+  const person = await app.addPerson(estateId, 'manager');
+  managerId = person.id;
+  manager = await app.as(person.email);
+  const owner = await app.as(ownerEmail);
+  const asked = await owner.post(`${base}/blocks/${plot.blockId}/zonings`, { layers: [{ layerId: plot.layerId }] });
+  await workOnZoning(asked.body.jobId as string);
+  zoningId = asked.body.zoningId as string;
+  await manager.patch(`${base}/zonings/${zoningId}`, { chosenZones: 2, name: 'Été 2026' });
+  const edit = async (operation: ZoneOperation) => {
+    const { revision } = (await manager.get(`${base}/zonings/${zoningId}`)).body as ZoningView;
+    expect((await manager.post(`${base}/zonings/${zoningId}/edits`, { operation, revision })).status).toBe(201);
+  };
+  // An island in the other zone, so that there is a hole to be wound the other way.
+  await edit({ kind: 'giveArea', toZone: 2, area: { type: 'Polygon', coordinates: outline([[22, 40], [42, 40], [42, 60], [22, 60]]).coordinates as [number, number][][] } });
+  for (const [index, name] of names.entries()) await edit({ kind: 'rename', zone: index + 1, name });
+  seen = (await manager.get(`${base}/zonings/${zoningId}`)).body as ZoningView;
+});
+afterAll(async () => {
+  rmSync(folder, { recursive: true, force: true });
+  await closeComputePool();
+  await app.close();
+});
+
+const take = (format: string, query = '') =>
+  manager.get(`${base}/zonings/${zoningId}/export?format=${format}${query}`).buffer(true).parse((response, done) => {
+    const parts: Buffer[] = [];
+    response.on('data', (part: Buffer) => parts.push(part));
+    response.on('end', () => done(null, Buffer.concat(parts)));
+  });
+const bytesOf = async (format: string) => {
+  const answer = await take(format);
+  expect(answer.status).toBe(200);
+  return answer.body as Buffer;
+};
+
+function hasTool(tool: string): boolean {
+  try {
+    execFileSync(tool, [tool === 'pdftotext' ? '-v' : '--version'], { stdio: 'ignore' });
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+/** What GDAL's own reader makes of a file, as GeoJSON with many decimals. */
+function readWithGdal(file: string): FeatureCollection<MultiPolygon> {
+  const out = execFileSync('ogr2ogr', ['-f', 'GeoJSON', '-lco', 'COORDINATE_PRECISION=10', '-nlt', 'PROMOTE_TO_MULTI', '/vsistdout/', file], { encoding: 'utf8', maxBuffer: 1e8 });
+  return JSON.parse(out) as FeatureCollection<MultiPolygon>;
+}
+
+const areaOf = (coordinates: Position[][][]) => polygonsArea(polygonsToUtm(coordinates as unknown as MultiPolygonLonLat, place.epsg));
+
+/** Distance in metres from each position of one set to the nearest of the other; the greatest of them. */
+function farthest(from: Position[][][], to: Position[][][]): number {
+  const metres = (shape: Position[][][]) => polygonsToUtm(shape as unknown as MultiPolygonLonLat, place.epsg).flat(2);
+  const others = metres(to);
+  return Math.max(...metres(from).map(([x, y]) => Math.min(...others.map(([u, v]) => Math.hypot(u - x, v - y)))));
+}
+
+function expectZones(read: FeatureCollection<MultiPolygon>, nameOf: (properties: Record<string, unknown>) => unknown): void {
+  expect(read.features.map((feature) => nameOf(feature.properties!))).toEqual(names);
+  read.features.forEach((feature, index) => {
+    const zone = seen.zones[index]!;
+    const { geometry } = feature as { geometry: { type: string; coordinates: Position[][] | Position[][][] } };
+    const coordinates = (geometry.type === 'Polygon' ? [geometry.coordinates] : geometry.coordinates) as Position[][][];
+    expect(Math.abs(areaOf(coordinates) / zone.areaM2 - 1)).toBeLessThan(1e-4);
+    expect(farthest(coordinates, zone.geometry.coordinates)).toBeLessThan(0.01);
+    expect(farthest(zone.geometry.coordinates, coordinates)).toBeLessThan(0.01);
+  });
+}
+
+describe('formats of zones', () => {
+  it('are listed for menus', async () => {
+    const { body } = await manager.get('/api/formats');
+    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'kml', 'rows', 'geotiff']);
+    expect((await (await app.browser()).get('/api/formats')).status).toBe(401);
+  });
+
+  it('are taken with a name, a type, and a note of who took them', async () => {
+    const answer = await take('geojson');
+    expect(answer.headers['content-type']).toMatch('application/geo+json');
+    expect(decodeURIComponent(answer.headers['content-disposition'] as string)).toContain('Côte à l’Éperon Été 2026.geojson');
+    expect(await AuditEntry.query().where({ action: 'zones.export', subjectId: zoningId }).orderBy('id', 'desc').first()).toMatchObject({ after: { format: 'geojson' }, subjectName: 'Côte à l’Éperon' });
+  });
+
+  it('refuse what they do not know', async () => {
+    expect((await manager.get(`${base}/zonings/${zoningId}/export`)).status).toBe(422);
+    const answer = await manager.get(`${base}/zonings/${zoningId}/export?format=dwg`);
+    expect([answer.status, answer.body.detail]).toEqual([422, expect.stringMatching(/"dwg".*geojson, shapefile/)]);
+    expect((await manager.get(`${base}/zonings/${plot.blockId}/export?format=kml`)).status).toBe(404);
+  });
+
+  it('can also be taken of a number of zones that nobody kept', async () => {
+    const answer = await take('geojson', '&zones=1');
+    const read = JSON.parse((answer.body as Buffer).toString('utf8')) as FeatureCollection;
+    expect(read.features).toHaveLength(1);
+  });
+});
+
+describe('GeoJSON', () => {
+  it('is as RFC 7946 asks: longitude first, closed, outer rings to the left, holes to the right', async () => {
+    const read = JSON.parse((await bytesOf('geojson')).toString('utf8')) as FeatureCollection<MultiPolygon>;
+    expectZones(read, (properties) => properties.name);
+    expect('crs' in read).toBe(false);
+    let holes = 0;
+    for (const polygon of read.features.flatMap((feature) => feature.geometry.coordinates)) {
+      polygon.forEach((ring, index) => {
+        expect(ring[0]).toEqual(ring.at(-1));
+        expect(ring.length).toBeGreaterThanOrEqual(4);
+        expect(Math.sign(signedArea(ring as [number, number][]))).toBe(index === 0 ? 1 : -1);
+        if (index > 0) holes += 1;
+      });
+    }
+    expect(holes).toBeGreaterThan(0);
+  });
+});
+
+describe('the shapefile', () => {
+  it('is read back by shpjs with names, areas and vertices', async () => {
+    const bytes = await bytesOf('shapefile');
+    const read = await shp(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length) as ArrayBuffer);
+    expectZones(read, (properties) => properties.NAME);
+    expect(read.features.map((feature) => [feature.properties!.ZONE, feature.properties!.VINES])).toEqual(seen.zones.map((zone) => [zone.number, zone.vines]));
+  });
+
+  it('says its encoding and reference, and turns outer rings clockwise', async () => {
+    const files = unzipSync(await bytesOf('shapefile'));
+    expect(Object.keys(files).sort()).toEqual(['zones.cpg', 'zones.dbf', 'zones.prj', 'zones.shp', 'zones.shx']);
+    expect(strFromU8(files['zones.cpg']!)).toBe('UTF-8');
+    expect(strFromU8(files['zones.prj']!)).toMatch(/^GEOGCS\["GCS_WGS_1984"/);
+    const main = Buffer.from(files['zones.shp']!);
+    const [parts, points] = [main.readInt32LE(108 + 36), main.readInt32LE(108 + 40)];
+    const starts = Array.from({ length: parts }, (_, part) => main.readInt32LE(108 + 44 + part * 4));
+    const at = 108 + 44 + parts * 4;
+    const ring = Array.from({ length: (starts[1] ?? points) }, (_, index): [number, number] => [main.readDoubleLE(at + index * 16), main.readDoubleLE(at + index * 16 + 8)]);
+    expect(signedArea(ring)).toBeLessThan(0);
+    expect(main.length).toBe(main.readInt32BE(24) * 2);
+  });
+
+  it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
+    const file = join(folder, 'zones.zip');
+    writeFileSync(file, await bytesOf('shapefile'));
+    expectZones(readWithGdal(`/vsizip/${file}/zones.shp`), (properties) => properties.NAME);
+    expect(execFileSync('ogrinfo', ['-so', '-al', `/vsizip/${file}/zones.shp`], { encoding: 'utf8' })).toMatch(/WGS[ _](19)?84/);
+  });
+});
+
+describe('KML', () => {
+  it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
+    const file = join(folder, 'zones.kml');
+    writeFileSync(file, await bytesOf('kml'));
+    expectZones(readWithGdal(file), (properties) => properties.Name ?? properties.name);
+  });
+
+  it('escapes what would break it', async () => {
+    const text = (await bytesOf('kml')).toString('utf8');
+    expect(text).toContain('Ødegård–Šípek &quot;Süd&quot;, 丘');
+    expect(text.match(/<Placemark>/g)).toHaveLength(2);
+  });
+});
+
+describe('the row table', () => {
+  it('gives every vine of every row to its zone once', async () => {
+    const text = (await bytesOf('rows')).toString('utf8');
+    expect(text.startsWith('\uFEFFrow,from_vine,to_vine,zone,zone_name\r\n')).toBe(true);
+    expect(text.endsWith('\r\n')).toBe(true);
+    const { data, errors } = Papa.parse<{ row: string; from_vine: string; to_vine: string; zone: string }>(text.slice(1), { header: true, skipEmptyLines: true });
+    expect(errors).toEqual([]);
+    for (const zone of seen.zones) {
+      const vines = data.filter((line) => Number(line.zone) === zone.number).reduce((sum, line) => sum + Number(line.to_vine) - Number(line.from_vine) + 1, 0);
+      expect(vines).toBe(zone.vines);
+    }
+    expect(new Set(data.map((line) => line.row)).size).toBe(plot.ground.stored.length);
+  });
+
+  it('holds no formula that a spreadsheet would run', async () => {
+    const { data } = Papa.parse<string[]>((await bytesOf('rows')).toString('utf8').slice(1));
+    const cells = data.flat();
+    expect(cells.filter((cell) => /^[=+\-@\t\r]/.test(cell))).toEqual([]);
+    expect(cells).toContain(`'${names[0]}`);
+    expect(cells).toContain(names[1]);
+  });
+});
+
+describe('the printed report', () => {
+  const print = async (query: string) => {
+    const answer = await manager.get(`${base}/zonings/${zoningId}/report${query}`).buffer(true).parse((response, done) => {
+      const parts: Buffer[] = [];
+      response.on('data', (part: Buffer) => parts.push(part));
+      response.on('end', () => done(null, Buffer.concat(parts)));
+    });
+    expect([answer.status, answer.headers['content-type']]).toEqual([200, 'application/pdf']);
+    return answer.body as Buffer;
+  };
+  const textOf = (bytes: Buffer) => {
+    const file = join(folder, 'report.pdf');
+    writeFileSync(file, bytes);
+    return execFileSync('pdftotext', ['-layout', file, '-'], { encoding: 'utf8' }).replace(/\s+/g, ' ');
+  };
+
+  it('is a PDF of the paper asked for, 210 × 297 mm or 8.5 × 11 inches', async () => {
+    const sheet = (bytes: Buffer) => /\/MediaBox \[0 0 ([\d.]+) ([\d.]+)\]/.exec(bytes.toString('latin1'))!.slice(1).map(Number);
+    const [a4, letter] = [await print('?size=A4'), await print('?size=Letter')];
+    expect(a4.subarray(0, 5).toString('latin1')).toBe('%PDF-');
+    expect(sheet(a4).map((points) => Math.round((points / 72) * 25.4))).toEqual([210, 297]);
+    expect(sheet(letter)).toEqual([612, 792]);
+    expect((await manager.get(`${base}/zonings/${zoningId}/report?size=A0`)).status).toBe(422);
+  });
+
+  it.skipIf(!hasTool('pdftotext'))('says verdict, zones, layers, and that nothing is known of ripeness yet', async () => {
+    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ override: { personId: plot.blockId, by: 'Inès Quillard', reason: 'Seen on foot', at: '2026-07-01' } });
+    const text = textOf(await print(''));
+    expect(text).toContain('Zones of Côte à l’Éperon');
+    expect(text).toContain('Worth zoning into two.');
+    expect(text).toContain('“Été 2026”: draft');
+    expect(text).toContain('Nothing here is said about ripeness until fruit is tested.');
+    expect(text).toContain('Inès Quillard answers for it: Seen on foot');
+    expect(text).toMatch(/method version \S+, seed 1/);
+    for (const zone of seen.zones) expect(text).toContain((zone.areaM2 / 10_000).toFixed(2));
+    expect(text).toContain('Ødegård–Sípek');
+  });
+
+  it.skipIf(!hasTool('pdftotext'))('speaks the language of whoever prints it', async () => {
+    await Person.query().where({ id: managerId }).patch({ language: 'fr' });
+    const text = textOf(await print(''));
+    expect(text).toContain('À diviser en deux zones.');
+    expect(text).toContain(`${(seen.zones[0]!.areaM2 / 10_000).toFixed(2).replace('.', ',')}`);
+    expect(text).not.toMatch(/\d\?\d/);
+  });
+});
+
+describe('the GeoTIFF of zone numbers', () => {
+  it('lies on the block’s grid with every cell’s zone', async () => {
+    const bytes = await bytesOf('geotiff');
+    const image = await (await fromArrayBuffer(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length) as ArrayBuffer)).getImage();
+    const grid = gridOf(plot.ground);
+    expect([image.getWidth(), image.getHeight()]).toEqual([grid.cols, grid.rows]);
+    expect(image.getOrigin().slice(0, 2)).toEqual([grid.x0, grid.y0]);
+    expect(image.getGeoKeys()!.ProjectedCSTypeGeoKey).toBe(grid.epsg);
+    const [labels] = (await image.readRasters()) as unknown as [Uint8Array];
+    const kept = (await manager.get(`${base}/zonings/${zoningId}/labels`)).body as Buffer;
+    expect(Buffer.from(labels!).equals(kept)).toBe(true);
+  });
+
+  it.skipIf(!hasTool('gdalinfo'))('is read by GDAL with reference, no-data value and place', async () => {
+    const file = join(folder, 'zones.tif');
+    writeFileSync(file, await bytesOf('geotiff'));
+    const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { geoTransform: number[]; bands: { type: string; noDataValue: number }[]; coordinateSystem: { wkt: string } };
+    const grid = gridOf(plot.ground);
+    expect(info.geoTransform).toEqual([grid.x0, grid.cellSizeM, 0, grid.y0, 0, -grid.cellSizeM]);
+    expect(info.bands).toMatchObject([{ type: 'Byte', noDataValue: 0 }]);
+    expect(info.coordinateSystem.wkt).toMatch(new RegExp(`${grid.epsg}\\]+$`));
+  });
+});

@@ -66,6 +66,8 @@ const doors: Door[] = [
   door('post', `/zonings/${nobody}/redo`, 'zones.edit', 'propose'),
   door('get', `/zonings/${nobody}/effects`, 'zones.edit', 'propose'),
   door('get', `/zonings/${nobody}/compare?with=${nobody}`, 'estate.see', 'read'),
+  door('get', `/zonings/${nobody}/export?format=geojson`, 'exports.make'),
+  door('get', `/zonings/${nobody}/report`, 'exports.make'),
   door('post', `/zonings/${nobody}/publish`, 'zones.publish'),
   door('post', `/zonings/${nobody}/restore`, 'zones.restore', 'propose'),
   door('get', `/zonings/${nobody}/results`, 'results.see', 'read'),

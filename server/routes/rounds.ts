@@ -7,8 +7,11 @@ import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts
 import { fieldRound } from '../services/rounds/fieldRound.ts';
 import { listRounds } from '../services/rounds/listRounds.ts';
 import { makeRound } from '../services/rounds/makeRound.ts';
+import { printSheet } from '../services/rounds/printSheet.ts';
 
 const filter = z.object({ block: id.optional(), plan: id.optional() });
+
+const sheetQuery = z.object({ paper: z.enum(['a4', 'letter']).default('a4') });
 
 /** Rounds: a plan's vines sent to people for a day. Crew see their own. */
 export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
@@ -34,6 +37,12 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
   router.post('/rounds/:roundId/acknowledge', allow('notices.acknowledge'), async (request, response) => {
     await acknowledgeRound(accessOf(request), idParam(request, 'roundId'), new Date());
     response.status(204).end();
+  });
+  router.get('/rounds/:roundId/sheet', allow('sheets.print', 'own'), async (request, response) => {
+    const { paper } = sheetQuery.parse(request.query);
+    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const { name, body } = await printSheet(accessOf(request), idParam(request, 'roundId'), { paper, publicUrl, now: new Date() });
+    response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   return router;
 }

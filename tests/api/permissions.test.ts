@@ -53,6 +53,7 @@ const doors: Door[] = [
   door('get', `/rounds/${nobody}`, 'readings.record', 'own'),
   door('patch', `/rounds/${nobody}`, 'readings.record', 'own'),
   door('post', `/rounds/${nobody}/acknowledge`, 'notices.acknowledge'),
+  door('get', `/rounds/${nobody}/sheet`, 'sheets.print', 'own'),
   door('post', `/blocks/${nobody}/zonings`, 'zoning.run', 'propose'),
   door('get', `/blocks/${nobody}/zonings`, 'estate.see', 'read'),
   door('get', '/zonings', 'estate.see', 'read'),

@@ -269,6 +269,22 @@ describe('a round', () => {
     expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open' })).body.code).toBe('calledOff');
   });
 
+  it('prints a sheet a person with every vine, for its own crew and nobody else of the crew', async () => {
+    const { roundId } = await send([crew.id]);
+    const pdf = await (await app.as(crew.email)).get(`${base()}/rounds/${roundId}/sheet?paper=letter`).buffer(true).parse((response, done) => {
+      const parts: Buffer[] = [];
+      response.on('data', (part: Buffer) => parts.push(part));
+      response.on('end', () => done(null, Buffer.concat(parts)));
+    });
+    expect(pdf.headers['content-type']).toBe('application/pdf');
+    const text = (pdf.body as Buffer).toString('latin1');
+    expect(text.startsWith('%PDF-')).toBe(true);
+    // US Letter is 612 by 792 points.
+    expect(text).toContain('/MediaBox [0 0 612 792]');
+    expect((await (await app.as(otherCrew.email)).get(`${base()}/rounds/${roundId}/sheet`)).status).toBe(404);
+    expect((await manager.get(`${base()}/rounds/${roundId}/sheet?paper=a0`)).status).toBe(422);
+  });
+
   it('is noted as seen once', async () => {
     const { roundId } = await send([crew.id]);
     const agent = await app.as(crew.email);

@@ -1,0 +1,147 @@
+import PDFDocument from 'pdfkit';
+import QRCode from 'qrcode';
+import type { FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
+import { restrictionsAt } from '../../shared/field/entry.ts';
+import { measureWords } from './measureWords.ts';
+import { sheetTexts, type SheetLanguage } from './sheetTexts.ts';
+
+/** One person's walk on paper, in black and white. */
+export interface SheetPart {
+  round: FieldRound;
+  person: string;
+  language: SheetLanguage;
+}
+
+export interface SheetOptions {
+  paper: 'a4' | 'letter';
+  link: string;
+  timeZone: string;
+}
+
+type Texts = (typeof sheetTexts)[SheetLanguage];
+
+const edge = 36;
+const lineHeight = 30;
+
+/** The walks of a round as PDF: a page run a person, vines in walking order with large boxes, safety card and QR to the round. */
+export async function crewSheet(parts: readonly SheetPart[], options: SheetOptions): Promise<Buffer> {
+  const pdf = new PDFDocument({ size: options.paper === 'a4' ? 'A4' : 'LETTER', margin: edge, autoFirstPage: false, info: { Title: parts[0] ? `${parts[0].round.blockName} ${parts[0].round.onDate}` : 'Sheet', Creator: 'Patchrow' } });
+  const chunks: Buffer[] = [];
+  pdf.on('data', (chunk: Buffer) => chunks.push(chunk));
+  const ended = new Promise<void>((resolve) => pdf.on('end', resolve));
+  const code = await QRCode.toBuffer(options.link, { errorCorrectionLevel: 'Q', margin: 4, scale: 6 });
+  for (const part of parts) drawPart(pdf, part, { ...options, code });
+  pdf.end();
+  await ended;
+  return Buffer.concat(chunks);
+}
+
+function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOptions & { code: Buffer }): void {
+  const texts = sheetTexts[part.language];
+  pdf.addPage();
+  drawHead(pdf, part, options);
+  const columns = columnsOf(pdf, part);
+  let y = drawTableHead(pdf, columns, { texts, y: pdf.y + 6 });
+  for (const stop of part.round.stops) {
+    if (y + lineHeight > pdf.page.height - edge - 16) {
+      pdf.addPage();
+      y = drawTableHead(pdf, columns, { texts, y: edge });
+    }
+    drawStop(pdf, columns, { stop, round: part.round, texts, y });
+    y += lineHeight;
+  }
+}
+
+function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
+  const texts = sheetTexts[language];
+  const day = new Intl.DateTimeFormat(language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(`${round.onDate}T12:00:00Z`));
+  const side = 92;
+  const width = pdf.page.width - 2 * edge - side - 12;
+  pdf.image(code, pdf.page.width - edge - side, edge, { width: side });
+  pdf.font('Helvetica').fontSize(8).text(texts.scan, pdf.page.width - edge - side, edge + side, { width: side, align: 'center' });
+  pdf.font('Helvetica-Bold').fontSize(20).text(`${round.blockName}, ${person}`, edge, edge, { width });
+  pdf.fontSize(12).text(day, { width });
+  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}. ${texts.start}: ${round.gate || '-'}`, { width });
+  pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
+  if (round.notes) pdf.text(round.notes, { width });
+  pdf.fontSize(9).text(texts.plan, { width });
+  pdf.y = Math.max(pdf.y, edge + side + 14);
+  drawSafety(pdf, { round, texts, language, timeZone });
+}
+
+function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone }: { round: FieldRound; texts: Texts; language: SheetLanguage; timeZone: string }): void {
+  const width = pdf.page.width - 2 * edge;
+  const rule = () => pdf.moveTo(edge, pdf.y).lineTo(edge + width, pdf.y).lineWidth(1.5).stroke();
+  rule();
+  pdf.y += 4;
+  const [closed] = restrictionsAt(round.restrictions, { at: `${round.onDate}T12:00:00Z`, rowIds: round.stops.map(({ rowId }) => rowId) });
+  if (closed) {
+    const until = new Intl.DateTimeFormat(language, { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(closed.endsAt));
+    pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${until} (${closed.product}, ${closed.setBy})`, edge, pdf.y, { width });
+  } else pdf.font('Helvetica').fontSize(9).text(texts.noRestriction, edge, pdf.y, { width });
+  pdf.font('Helvetica').fontSize(9).text(texts.law, { width });
+  pdf.text(`${texts.safety} ${texts.meeting}: ${round.safety.meetingPoint || '-'}. ${texts.emergency}: ${round.safety.emergencyNumber || '-'}.`, { width });
+  pdf.font('Helvetica-Bold').text(texts.notVine, { width });
+  pdf.y += 4;
+  rule();
+}
+
+interface Column {
+  x: number;
+  width: number;
+  head: (texts: Texts) => string;
+  text: (stop: WalkStop, round: FieldRound, texts: Texts) => string;
+  box?: (stop: WalkStop) => boolean;
+  bold?: boolean;
+}
+
+function columnsOf(pdf: PDFKit.PDFDocument, { round, language }: SheetPart): Column[] {
+  const fixed: Omit<Column, 'x'>[] = [
+    { width: 26, head: () => '', text: ({ number }) => String(number) },
+    { width: 58, head: ({ row }) => row, text: ({ rowLabel, rowLabelWas }) => (rowLabelWas ? `${rowLabel} (${rowLabelWas})` : rowLabel), bold: true },
+    { width: 74, head: ({ from }) => from, text: fromWords },
+    { width: 44, head: ({ vine }) => vine, text: ({ vineNumber }) => String(vineNumber), bold: true },
+    { width: 46, head: ({ ahead }) => ahead, text: ({ ahead, aheadFrom }) => (aheadFrom === 'lastVine' ? `+${ahead}` : String(ahead)) },
+    { width: 34, head: ({ zone }) => zone, text: ({ zone }) => String(zone) },
+    { width: 62, head: ({ reserve }) => reserve, text: ({ reserve }) => (reserve ? `${reserve.rowLabel} / ${reserve.vineNumber}` : '-') },
+  ];
+  const measures = round.measures.slice(0, 4);
+  const left = pdf.page.width - 2 * edge - fixed.reduce((sum, { width }) => sum + width, 0);
+  const boxes = measures.map((measure): Omit<Column, 'x'> => ({ width: left / measures.length, head: () => headOf(measure, language), text: () => '', box: (stop) => stop.measures.includes(measure.code) }));
+  let x = edge;
+  return [...fixed, ...boxes].map((column) => {
+    const placed = { ...column, x };
+    x += column.width;
+    return placed;
+  });
+}
+
+/** The measure in the reader's language; a unit that only repeats the name is left out. */
+function headOf({ code, name, unit }: FieldRound['measures'][number], language: SheetLanguage): string {
+  const word = measureWords[language]?.[code] ?? (name || code);
+  return unit === 'clusters' || unit === 'berries' || word.includes(unit) ? word : `${word}, ${unit}`;
+}
+
+function fromWords({ enterBy, heading, aheadFrom }: WalkStop, round: FieldRound, texts: Texts): string {
+  if (aheadFrom === 'lastVine') return texts.on;
+  const isStart = enterBy === 'start' || (enterBy !== 'end' && heading === 'toEnd');
+  return texts.colours[isStart ? round.startPostColour : round.endPostColour];
+}
+
+function drawTableHead(pdf: PDFKit.PDFDocument, columns: readonly Column[], { texts, y }: { texts: Texts; y: number }): number {
+  pdf.font('Helvetica-Bold').fontSize(9);
+  for (const { x, width, head } of columns) pdf.text(head(texts), x + 2, y, { width: width - 4, height: 22, ellipsis: true });
+  pdf.moveTo(edge, y + 24).lineTo(pdf.page.width - edge, y + 24).lineWidth(1.5).stroke();
+  return y + 26;
+}
+
+function drawStop(pdf: PDFKit.PDFDocument, columns: readonly Column[], { stop, round, texts, y }: { stop: WalkStop; round: FieldRound; texts: Texts; y: number }): void {
+  for (const { x, width, text, box, bold } of columns) {
+    if (box) {
+      if (box(stop)) pdf.rect(x + 3, y + 2, width - 6, lineHeight - 5).lineWidth(1.2).stroke();
+      continue;
+    }
+    pdf.font(bold ? 'Helvetica-Bold' : 'Helvetica').fontSize(bold ? 15 : 11).text(text(stop, round, texts), x + 2, y + (bold ? 7 : 9), { width: width - 4, lineBreak: false });
+  }
+  pdf.moveTo(edge, y + lineHeight - 1).lineTo(pdf.page.width - edge, y + lineHeight - 1).lineWidth(0.5).stroke();
+}

@@ -66,7 +66,7 @@ async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> 
     await ZoningCandidate.query(trx).insert(
       candidates.map(({ k, labels, doubt, zones, differences }) => ({
         estateId: zoning.estateId, zoningId: zoning.id, zoneCount: k, labels: Buffer.from(encodeCells(labels)), doubt: Buffer.from(encodeCells(doubt)),
-        zones: plainFigures({ differences, zones: zones.map(({ polygonsXY: _metres, ...zone }) => zone) }),
+        zones: plainFigures({ differences, zones: zones.map((zone) => ({ ...zone, polygonsXY: null })) }),
       })),
     );
     await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({

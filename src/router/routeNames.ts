@@ -33,6 +33,7 @@ export const routePlaces = {
   planNew: { path: '/e/:estateId/zonings/:zoningId/plan', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   targets: { path: '/e/:estateId/plans/:planId/targets', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   sheets: { path: '/e/:estateId/rounds/:roundId/sheet', frame: 'office', needs: ['sheets.print', 'own'], under: 'sampling' },
+  restrictions: { path: '/e/:estateId/restrictions', frame: 'office', needs: ['restrictions.see', 'read'], under: 'sampling' },
   lab: { path: '/e/:estateId/lab', frame: 'office', needs: ['lab.enter', 'propose'] },
   ripeness: { path: '/e/:estateId/ripeness', frame: 'office', needs: ['results.see', 'read'] },
   blockRipeness: { path: '/e/:estateId/blocks/:blockId/ripeness', frame: 'office', needs: ['results.see', 'read'], under: 'ripeness' },

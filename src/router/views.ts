@@ -18,6 +18,7 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   mail: () => import('../views/people/MailView.vue'),
   settings: () => import('../views/people/SettingsView.vue'),
   history: () => import('../views/people/HistoryView.vue'),
+  restrictions: () => import('../views/safety/RestrictionsView.vue'),
   sampling: () => import('../views/sampling/SamplingView.vue'),
   planNew: () => import('../views/sampling/PlanView.vue'),
   plan: () => import('../views/sampling/PlanView.vue'),

@@ -1,0 +1,18 @@
+import { defineStore } from 'pinia';
+import type { z } from 'zod';
+import type { newRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
+import { http } from '../lib/http.ts';
+
+interface NamedBlock {
+  readonly id: string;
+  readonly name: string;
+}
+
+/** Entry restrictions of the estate, as responsible people typed them. */
+export const useRestrictionsStore = defineStore('restrictions', () => {
+  const list = async (estateId: string) => (await http.get<{ items: RestrictionView[] }>(`/api/estates/${estateId}/restrictions`)).items;
+  const blocks = async (estateId: string) => (await http.get<{ items: NamedBlock[] }>(`/api/estates/${estateId}/blocks`)).items;
+  const set = (estateId: string, restriction: z.input<typeof newRestriction>) => http.post(`/api/estates/${estateId}/restrictions`, restriction);
+  const lift = (estateId: string, restrictionId: string, reason: string) => http.post(`/api/estates/${estateId}/restrictions/${restrictionId}/lift`, { reason });
+  return { list, blocks, set, lift };
+});

@@ -4,6 +4,7 @@
  * In: layers in their own units. Out: prepared layers, weights, columns. Cost: a few passes over the cells a layer.
  */
 
+import { layerTypes } from '../catalog/layerTypes.ts';
 import { AnalysisError } from './analysisError.ts';
 import { coverageOf } from './layerStats.ts';
 import type { Cells, Grid } from './grid.ts';
@@ -17,7 +18,7 @@ const LEAST_COVERAGE = 0.5;
 const GOOD_COVERAGE = 0.9;
 
 export interface PreparedLayer extends ZoningLayer {
-  /** Smoothed cells of an evidence layer, the given ones of a context layer. */
+  /** Smoothed cells of a picture that shows rows, the given ones of any other layer. */
   readonly smoothed: Cells;
   readonly standardised: Cells;
 }
@@ -46,7 +47,8 @@ export function prepareLayers(grid: Grid, layers: readonly ZoningLayer[], option
 }
 
 function prepareLayer(grid: Grid, layer: ZoningLayer, { smoothingM, standardise: method }: ZoningOptions): PreparedLayer | null {
-  const isSmoothed = layer.role === 'evidence' && layer.kind === 'number' && smoothingM > 0;
+  const showsRows = layerTypes.find(({ id }) => id === layer.type)?.showsRows ?? false;
+  const isSmoothed = showsRows && layer.kind === 'number' && smoothingM > 0;
   const smoothed = isSmoothed ? smooth(grid, layer.cells, { sigmaM: smoothingM, fillMissing: true }) : layer.cells;
   if (layer.kind === 'class') return new Set(insideValues(grid, layer.cells)).size < 2 ? null : { ...layer, smoothed, standardised: smoothed };
   const { cells, scale } = standardise(grid, smoothed, { method });

@@ -24,7 +24,7 @@ export interface ZoningOptions {
   /** Advise looks for the best number; 1…6 fixes it. Candidates for all six are made either way. */
   readonly zones: 'advise' | number;
   readonly standardise: StandardMethod;
-  /** Gaussian smoothing of evidence layers, metres; hides rows and pixel noise. 0 smooths nothing. */
+  /** Gaussian smoothing of pictures of the vines, metres; hides rows and pixel noise. 0 smooths nothing. */
   readonly smoothingM: number;
   /** Patches smaller than this join a neighbour. */
   readonly smallestPatchHa: number;

@@ -18,13 +18,15 @@ export interface LayerType {
   readonly decimals: number;
   /** Made from another layer by the program, not offered for upload. */
   readonly derived: boolean;
+  /** A picture in which vine rows show; zoning smooths them away. Points are averages of their neighbours already. */
+  readonly showsRows: boolean;
 }
 
-const row = (id: string, rest: Omit<LayerType, 'id' | 'derived'> & { derived?: boolean }): LayerType => ({ derived: false, ...rest, id });
+const row = (id: string, rest: Omit<LayerType, 'id' | 'derived' | 'showsRows'> & { derived?: boolean; showsRows?: boolean }): LayerType => ({ derived: false, showsRows: false, ...rest, id });
 
 /** Everything that differs between layer types; forms, checks, colours and legends read this table. */
 export const layerTypes = [
-  row('vigour', { unit: '', role: 'evidence', resampling: 'mean', ramp: 'vigour', min: -1, max: 60, decimals: 2 }),
+  row('vigour', { unit: '', role: 'evidence', resampling: 'mean', ramp: 'vigour', min: -1, max: 60, decimals: 2, showsRows: true }),
   row('conductivity', { unit: 'mS/m', role: 'evidence', resampling: 'mean', ramp: 'conductivity', min: 0, max: 2000, decimals: 1 }),
   row('yield', { unit: 't/ha', role: 'evidence', resampling: 'mean', ramp: 'ripeness', min: 0, max: 80, decimals: 1 }),
   row('soilNumber', { unit: '', role: 'context', resampling: 'mean', ramp: 'conductivity', min: null, max: null, decimals: 1 }),

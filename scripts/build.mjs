@@ -1,6 +1,7 @@
 // Builds client (vite) and server (tsc) into dist/, each only when its sources have changed since.
 import { existsSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { pathToFileURL } from 'node:url';
+import { stripVTControlCharacters } from 'node:util';
 import { sourceHash } from './build/sourceHash.mjs';
 import { inCheckout, npmProgram, root } from './checkout.mjs';
 import { filesBelow } from './filesBelow.mjs';
@@ -42,6 +43,9 @@ function removeOutputsWithoutSource() {
   }
 }
 
+/** The first error is the one to mend; the bundler's colours and stack come after it. */
+const firstLines = (output) => stripVTControlCharacters(output).trim().split('\n').filter((line) => !/^\s*at /.test(line)).slice(0, 40).join('\n');
+
 async function build(part, hash) {
   say(`Building the ${part.name} …`);
   rmSync(stampOf(part), { force: true });
@@ -50,7 +54,7 @@ async function build(part, hash) {
   try {
     await runCommand(npmProgram(program), args, { env: { ...process.env, NODE_ENV: 'production' } });
   } catch (error) {
-    if (error instanceof CommandFailed) throw new Problem(`The ${part.name} could not be built.\n${error.message}`);
+    if (error instanceof CommandFailed) throw new Problem(`The ${part.name} could not be built.\n${firstLines(error.output)}`);
     throw error;
   }
   part.after?.();

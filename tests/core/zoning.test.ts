@@ -130,7 +130,7 @@ describe('layers and weights in a zoning', () => {
   });
 
   it('makes the same zones of two equal layers as of one', () => {
-    const twin = layer('again', block.vigour);
+    const twin = layer('again', block.vigour, { type: 'vigour' });
     const alone = makeZoning({ ...input, layers: [vigour] });
     const twice = makeZoning({ ...input, layers: [vigour, twin] });
     expect(adjustedRandIndex(insideOf(alone.candidates[1]!.labels), insideOf(twice.candidates[1]!.labels))).toBeGreaterThan(0.97);

@@ -2,7 +2,7 @@ import { Map as MlMap, setWorkerUrl, type GeoJSONSource } from 'maplibre-gl';
 import workerUrl from 'maplibre-gl/dist/maplibre-gl-worker.mjs?url';
 import 'maplibre-gl/dist/maplibre-gl.css';
 import type { FeatureCollection } from 'geojson';
-import { computed, markRaw, onBeforeUnmount, onMounted, shallowRef, watch, type InjectionKey, type Ref, type ShallowRef } from 'vue';
+import { computed, markRaw, onMounted, onUnmounted, shallowRef, watch, type InjectionKey, type Ref, type ShallowRef } from 'vue';
 import { mapLayers, mapStyle, type MapInk, type MapSource } from './mapStyle.ts';
 import { useTheme, useTokens } from '../../composables/useTheme.ts';
 
@@ -43,7 +43,8 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
     made.once('load', () => (map.value = markRaw(made!)));
   });
   watch(theme, () => map.value && recolour(map.value, ink.value));
-  onBeforeUnmount(() => {
+  // After the parts that draw on it: the pen takes its own layers off first.
+  onUnmounted(() => {
     map.value = null;
     made?.remove();
   });

@@ -19,7 +19,8 @@ export async function describeFile(source: SourceFile): Promise<Described> {
     format: formatOf(understood),
     file: summaryOf(understood),
     questions: understood.questions.flatMap((question) => readerQuestionsOf(question, source.answers)),
-    notes: [...understood.warnings.map(noteOf), ...repairNotes(understood)],
+    // The reader offers a repair shape by shape; here all are taken, so one note says so.
+    notes: [...understood.warnings.filter((warning) => warning.code !== 'self-crossing').map(noteOf), ...repairNotes(understood)],
   };
 }
 

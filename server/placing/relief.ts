@@ -4,7 +4,7 @@ import { fromUtm, toUtm } from '../../shared/geo/utm.ts';
 import type { PlacedRelief } from './placed.ts';
 
 /** Land shown round the blocks, and how many cells a side are enough for hillshade and contours on a screen. */
-const marginM = 250;
+const marginM = 600;
 const mostCellsASide = 240;
 const leastCellM = 2;
 
@@ -19,8 +19,22 @@ export function reliefGrid(grids: readonly Grid[]): Grid {
   return gridOfOutline(rectangle, epsg, cellSizeM);
 }
 
+/** The part of the grid that has heights: its edge is where the picture of the land fades out. */
 export function reliefOf({ epsg, x0, y0, cellSizeM, cols, rows }: Grid, cells: Cells): PlacedRelief {
-  return { epsg, x0, y0, cellSizeM, cols, rows, cells };
+  let [west, east, north, south] = [cols, -1, rows, -1];
+  for (let cell = 0; cell < cells.length; cell++) {
+    if (Number.isNaN(cells[cell]!)) continue;
+    const row = Math.floor(cell / cols);
+    west = Math.min(west, cell - row * cols);
+    east = Math.max(east, cell - row * cols);
+    north = Math.min(north, row);
+    south = Math.max(south, row);
+  }
+  const width = Math.max(0, east - west + 1);
+  const height = Math.max(0, south - north + 1);
+  const part = new Float32Array(width * height);
+  for (let row = 0; row < height; row++) part.set(cells.subarray((north + row) * cols + west, (north + row) * cols + west + width), row * width);
+  return { epsg, x0: x0 + west * cellSizeM, y0: y0 - north * cellSizeM, cellSizeM, cols: width, rows: height, cells: part };
 }
 
 function cornersIn({ x0, y0, cellSizeM, cols, rows, epsg: own }: Grid, epsg: number): XY[] {

@@ -162,11 +162,12 @@ describe('elevation', () => {
     const relief = (await agent.get(`${base()}/relief`)).body;
     const heights = decodeFloatCells(Uint8Array.from(Buffer.from(relief.cells as string, 'base64')));
     expect(heights.length).toBe(relief.columns * relief.rows);
-    // Two blocks over 250 by 60 m with 250 m around; the picture covers only the middle of it.
-    expect(relief.columns * relief.cellSizeM).toBeGreaterThan(740);
+    // The picture is 270 by 80 m: the relief ends where it ends, within a cell.
+    expect(Math.abs(relief.columns * relief.cellSizeM - 270)).toBeLessThanOrEqual(2 * relief.cellSizeM);
+    expect(Math.abs(relief.rows * relief.cellSizeM - 80)).toBeLessThanOrEqual(2 * relief.cellSizeM);
     const known = heights.filter((height) => !Number.isNaN(height));
-    expect(Math.max(...known)).toBeCloseTo(300 + 0.2 * 69, 0);
-    expect(known.length).toBeLessThan(heights.length / 4);
+    expect(Math.max(...known)).toBeCloseTo(300 + 0.2 * 68, 0);
+    expect(known.length).toBeGreaterThan(0.8 * heights.length);
   });
 });
 

@@ -40,7 +40,7 @@ async function placeImport(context: JobContext): Promise<{ layerIds: string[]; b
   return FileImport.transaction(async (trx) => {
     const layerIds = await storeLayers(trx, record, placed);
     const { relief } = placed[0]!;
-    if (relief) await keepRelief(trx, estateId, { ...relief, cells: Buffer.from(encodeCells(relief.cells)) });
+    if (relief && relief.cells.length > 0) await keepRelief(trx, estateId, { ...relief, cells: Buffer.from(encodeCells(relief.cells)) });
     await FileImport.query(trx).where({ estateId, id: record.id }).patch({ state: 'done', problem: null, finishedAt: new Date() });
     await writeAudit(trx, { estateId, personId: createdBy }, { action: 'layer.place', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) } });
     return { layerIds, blocks: placed[0]!.blocks.length };

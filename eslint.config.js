@@ -14,6 +14,8 @@ export default ts.config(
       '@typescript-eslint/no-floating-promises': 'error',
       '@typescript-eslint/no-misused-promises': ['error', { checksVoidReturn: { arguments: false, attributes: false } }],
       '@typescript-eslint/no-explicit-any': 'error',
+      // A leading underscore says that a place must be named but is not used.
+      '@typescript-eslint/no-unused-vars': ['error', { argsIgnorePattern: '^_', varsIgnorePattern: '^_', ignoreRestSiblings: true }],
       'no-undef': 'off',
       'no-console': 'error',
       'vue/multi-word-component-names': 'off',

@@ -72,5 +72,5 @@ export function dateInName(name: string): string | null {
 }
 
 function plain(text: string): string {
-  return text.normalize('NFD').replace(/\p{M}/gu, '').toLowerCase().replace(/[_.\-]+/g, ' ');
+  return text.normalize('NFD').replace(/\p{M}/gu, '').toLowerCase().replace(/[_.-]+/g, ' ');
 }

@@ -191,7 +191,10 @@ function drawErrorBars(chart: Chart<'line'>, series: ChartSeries, ink: ChartInk)
     const [x, low, high] = [chart.scales.x!.getPixelForValue(point.x), chart.scales.y!.getPixelForValue(point.low), chart.scales.y!.getPixelForValue(point.high)];
     const cap = series.look === 'points' ? 4 : 0;
     stroke(chart.ctx, { colour: ink.ink, width: 1.5 }, (pen) => {
-      for (const end of [low, high]) (pen.moveTo(x - cap, end), pen.lineTo(x + cap, end));
+      for (const end of [low, high]) {
+        pen.moveTo(x - cap, end);
+        pen.lineTo(x + cap, end);
+      }
       pen.moveTo(x, low);
       pen.lineTo(x, chart.scales.y!.getPixelForValue(point.y) + 5);
       pen.moveTo(x, high);

@@ -14,7 +14,7 @@ export function useMapLeader(map: ShallowRef<MlMap | null>, shape: () => AreaGeo
 
   const clear = () => {
     link.mapY.value = null;
-    map.value?.getSource<GeoJSONSource>('leader')?.setData({ type: 'FeatureCollection', features: [] });
+    void map.value?.getSource<GeoJSONSource>('leader')?.setData({ type: 'FeatureCollection', features: [] });
   };
   const draw = () => {
     const [ready, area] = [map.value, shape()];
@@ -22,7 +22,7 @@ export function useMapLeader(map: ShallowRef<MlMap | null>, shape: () => AreaGeo
     const end = leaderEnd(ready, area);
     if (end === null) return clear();
     const [from, to] = [ready.unproject([-40, end.y]), ready.unproject([end.x, end.y])];
-    ready.getSource<GeoJSONSource>('leader')?.setData({ type: 'Feature', properties: {}, geometry: { type: 'LineString', coordinates: [from.toArray(), to.toArray()] } });
+    void ready.getSource<GeoJSONSource>('leader')?.setData({ type: 'Feature', properties: {}, geometry: { type: 'LineString', coordinates: [from.toArray(), to.toArray()] } });
     link.mapY.value = end.y;
     link.moved.value++;
   };

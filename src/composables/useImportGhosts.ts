@@ -1,0 +1,27 @@
+import { computed, type ComputedRef } from 'vue';
+import type { ImportView } from '../../shared/contracts/imports.ts';
+
+/** A possible placing of a file as the map draws it. */
+export interface Ghost {
+  readonly id: string;
+  readonly letter: string;
+  readonly geometry: { type: 'Polygon'; coordinates: number[][][] } | { type: 'MultiPolygon'; coordinates: number[][][][] };
+  readonly chosen: boolean;
+}
+
+const letter = (index: number) => String.fromCharCode(65 + index);
+
+/** Ghost outlines of the open line: one a candidate while its placing is asked, its offered outlines, or where it lies. */
+export function useImportGhosts(line: () => ImportView | null, placing: () => string | null): ComputedRef<Ghost[]> {
+  return computed(() => {
+    const open = line();
+    if (open === null) return [];
+    const question = open.questions.find((each) => !each.answered && (each.code === 'reference' || each.code === 'placement'));
+    if (question) {
+      return question.choices.flatMap((choice, at): Ghost[] => (choice.outlineLonLat === null ? [] : [{ id: String(choice.value), letter: letter(at), geometry: { type: 'Polygon', coordinates: [choice.outlineLonLat] }, chosen: String(choice.value) === placing() }]));
+    }
+    if (open.outlines.length > 0) return open.outlines.map((outline) => ({ id: String(outline.index), letter: String(outline.index + 1), geometry: outline.boundary as Ghost['geometry'], chosen: outline.problem === null }));
+    const ring = open.understood?.outlineLonLat;
+    return ring ? [{ id: open.id, letter: letter(0), geometry: { type: 'Polygon', coordinates: [ring] }, chosen: true }] : [];
+  });
+}

@@ -1,0 +1,112 @@
+import { defineStore } from 'pinia';
+import { shallowRef } from 'vue';
+import type { ImportAnswers, ImportView, OutlinesTaken } from '../../shared/contracts/imports.ts';
+import { fileGroups } from '../lib/fileGroups.ts';
+import { http } from '../lib/http.ts';
+import { HttpProblem } from '../lib/httpProblem.ts';
+
+/** A file on its way to the server. */
+export interface Sending {
+  readonly id: number;
+  readonly fileName: string;
+  readonly bytes: number;
+  /** Share sent, 0…1; then the server reads. */
+  readonly share: number;
+  readonly problem: HttpProblem | null;
+  readonly stop: () => void;
+}
+
+type Taken = { blocks: (Omit<Partial<OutlinesTaken['blocks'][number]>, 'outline' | 'name'> & { outline: number; name: string })[] };
+
+/** The import desk: lines of files that were received, and of those on their way. */
+export const useImportsStore = defineStore('imports', () => {
+  const lines = shallowRef<readonly ImportView[]>([]);
+  const sending = shallowRef<readonly Sending[]>([]);
+  let last = 0;
+  const base = (estateId: string) => `/api/estates/${estateId}/imports`;
+
+  async function load(estateId: string): Promise<void> {
+    lines.value = (await http.get<{ items: ImportView[] }>(base(estateId))).items;
+  }
+
+  /** Puts a line in its place; a new one comes first. */
+  function keep(line: ImportView): ImportView {
+    const known = lines.value.some((each) => each.id === line.id);
+    lines.value = known ? lines.value.map((each) => (each.id === line.id ? line : each)) : [line, ...lines.value];
+    return line;
+  }
+
+  function patchSending(id: number, change: Partial<Sending>): void {
+    sending.value = sending.value.map((each) => (each.id === id ? { ...each, ...change } : each));
+  }
+
+  function forget(id: number): void {
+    sending.value = sending.value.filter((each) => each.id !== id);
+  }
+
+  /** Sends files one after the other, each with its own line; what belongs together goes together. */
+  async function send(estateId: string, files: readonly File[]): Promise<ImportView[]> {
+    const waiting = fileGroups(files).map((group) => lineUp(group));
+    const received: ImportView[] = [];
+    for (const one of waiting) received.push(...(await sendGroup(estateId, one)));
+    return received;
+  }
+
+  interface Waiting {
+    readonly id: number;
+    readonly group: readonly File[];
+    readonly abort: AbortController;
+  }
+
+  function lineUp(group: readonly File[]): Waiting {
+    const [id, abort] = [++last, new AbortController()];
+    const bytes = group.reduce((sum, file) => sum + file.size, 0);
+    const stop = () => (abort.abort(), forget(id));
+    sending.value = [...sending.value, { id, fileName: group[0]!.name, bytes, share: 0, problem: null, stop }];
+    return { id, group, abort };
+  }
+
+  async function sendGroup(estateId: string, { id, group, abort }: Waiting): Promise<ImportView[]> {
+    if (abort.signal.aborted) return [];
+    const form = new FormData();
+    for (const file of group) form.append('files', file, file.name);
+    try {
+      const { items } = await http.upload<{ items: ImportView[] }>(base(estateId), form, { signal: abort.signal, onProgress: (sent, total) => patchSending(id, { share: total > 0 ? sent / total : 0 }) });
+      forget(id);
+      return items.map(keep);
+    } catch (error) {
+      return refused(id, error);
+    }
+  }
+
+  function refused(id: number, error: unknown): ImportView[] {
+    if (error instanceof DOMException && error.name === 'AbortError') {
+      forget(id);
+      return [];
+    }
+    if (!(error instanceof HttpProblem)) throw error;
+    const items = error.facts.items as ImportView[] | undefined;
+    if (items === undefined) patchSending(id, { problem: error });
+    else forget(id);
+    return (items ?? []).map(keep);
+  }
+
+  const refresh = async (estateId: string, importId: string) => keep(await http.get<ImportView>(`${base(estateId)}/${importId}`));
+  const answer = async (estateId: string, importId: string, answers: ImportAnswers) => keep(await http.patch<ImportView>(`${base(estateId)}/${importId}`, { answers }));
+
+  async function takeOutlines(estateId: string, importId: string, taken: Taken): Promise<{ id: string; name: string }[]> {
+    const { items } = await http.post<{ items: { id: string; name: string }[] }>(`${base(estateId)}/${importId}/blocks`, taken);
+    await refresh(estateId, importId);
+    return items;
+  }
+
+  async function dismiss(estateId: string, importId: string): Promise<void> {
+    await http.delete(`${base(estateId)}/${importId}`);
+    lines.value = lines.value.filter((each) => each.id !== importId);
+  }
+
+  const stop = (estateId: string, jobId: string) => http.delete(`/api/estates/${estateId}/jobs/${jobId}`);
+  const original = (estateId: string, file: { fileId: string; fileName: string }) => http.download(`/api/estates/${estateId}/files/${file.fileId}/download`, file.fileName);
+
+  return { lines, sending, load, send, forget, refresh, answer, takeOutlines, dismiss, stop, original };
+});

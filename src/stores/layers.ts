@@ -1,0 +1,20 @@
+import { defineStore } from 'pinia';
+import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import type { BlockLayerView, LayerChange, OverrideChange, ReliefView } from '../../shared/contracts/layers.ts';
+import { http } from '../lib/http.ts';
+
+/** Layers on blocks and their cells. Cells are not kept here: a screen holds those it shows. */
+export const useLayersStore = defineStore('layers', () => {
+  const base = (estateId: string) => `/api/estates/${estateId}`;
+
+  const onBlock = async (estateId: string, blockId: string) => (await http.get<{ items: BlockLayerView[] }>(`${base(estateId)}/blocks/${blockId}/layers`)).items;
+  const cells = async (estateId: string, layer: { id: string; blockId: string }) => decodeFloatCells(new Uint8Array(await http.getBytes(`${base(estateId)}/layers/${layer.id}/cells`, { query: { block: layer.blockId } })));
+  const change = (estateId: string, layerId: string, changed: LayerChange) => http.patch(`${base(estateId)}/layers/${layerId}`, changed);
+  const override = (estateId: string, layerId: string, made: OverrideChange) => http.post(`${base(estateId)}/layers/${layerId}/override`, made);
+  const retire = (estateId: string, layerId: string) => http.delete(`${base(estateId)}/layers/${layerId}`);
+  const original = (estateId: string, file: { fileId: string; fileName: string }) => http.download(`${base(estateId)}/files/${file.fileId}/download`, file.fileName);
+
+  const relief = (estateId: string) => http.get<ReliefView | null>(`${base(estateId)}/relief`);
+
+  return { onBlock, cells, relief, change, override, retire, original };
+});

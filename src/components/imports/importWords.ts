@@ -51,9 +51,11 @@ function coversWords(line: ImportView, { t, format }: Pick<Words, 't' | 'format'
 }
 
 /** A note or a refusal in the reader's language where we have the sentence, else as the reader of the file said it. */
-export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te }: Pick<Words, 't' | 'te'>): { text: string; detail: string | null } {
+export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te, format }: Words): { text: string; detail: string | null } {
   const key = `imports.${kind}.${note.code}`;
-  return te(key) ? { text: t(key, note.params), detail: kind === 'problem' ? note.text : null } : { text: note.text, detail: null };
+  if (!te(key)) return { text: note.text, detail: null };
+  const named = Object.fromEntries(Object.entries(note.params).map(([name, value]) => [name, typeof value === 'number' ? format.number(value, Number.isInteger(value) ? 0 : 2) : value]));
+  return { text: t(key, named), detail: kind === 'problem' ? note.text : null };
 }
 
 /** The words of an answer: the file's own, or ours for the value. */

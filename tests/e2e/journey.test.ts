@@ -1,0 +1,184 @@
+import AxeBuilder from '@axe-core/playwright';
+import type { Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { startApplication, type Application } from './support/application.ts';
+import { elevationFile, outlineFile, soilZip, vigourFile } from './support/files.ts';
+
+let app: Application;
+let blockPath = '';
+let estateId = '';
+
+beforeAll(async () => {
+  app = await startApplication();
+}, 600_000);
+afterAll(() => app?.close());
+
+/** No violation that axe calls serious or worse. */
+async function expectAccessible(page: Page): Promise<void> {
+  const { violations } = await new AxeBuilder({ page }).analyze();
+  expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id, nodes }) => `${id}: ${nodes.map(({ html }) => html.slice(0, 160)).join(' | ')}`)).toEqual([]);
+}
+
+/** Gives the answers that are still asked for, in steps, until the file is placed. */
+async function answer(page: Page, file: string, answers: Record<string, string>): Promise<void> {
+  const line = page.locator('li.import-line', { hasText: file }).first();
+  await line.waitFor();
+  for (let step = 0; step < 6; step++) {
+    await page.waitForFunction(() => document.querySelector('[aria-busy="true"]') === null);
+    if ((await line.getByRole('button', { name: 'Confirm', exact: true }).count()) === 0) {
+      if (await line.getByText('Ready', { exact: true }).count()) break;
+      await line.locator('h2 button').click();
+      if ((await line.getByRole('button', { name: 'Confirm', exact: true }).count()) === 0) break;
+    }
+    for (const [question, words] of Object.entries(answers)) {
+      const choice = line.getByRole('group', { name: question }).getByText(words, { exact: true });
+      if (await choice.count()) await choice.first().click();
+      const list = line.getByLabel(question);
+      if ((await list.count()) && (await list.first().evaluate((element) => element.tagName)) === 'SELECT') await list.first().selectOption({ label: words });
+      if ((await list.count()) && (await list.first().getAttribute('type')) === 'date') await list.first().fill(words);
+    }
+    const answered = page.waitForResponse((response) => response.request().method() !== 'GET' && response.url().includes('/imports/'));
+    await line.getByRole('button', { name: 'Confirm', exact: true }).click();
+    await answered;
+  }
+  await expect.poll(() => line.getByText('Ready', { exact: true }).count(), { timeout: 90_000 }).toBeGreaterThan(0);
+}
+
+describe('from a vigour image to a pick lot', () => {
+  it('the agronomist makes a block from an outline', async () => {
+    const { page, context, estateId: estate } = await app.signIn('agronomist');
+    estateId = estate;
+    await page.getByRole('link', { name: 'Add block' }).click();
+    await page.locator('input[type=file]').setInputFiles(outlineFile());
+    await expect.poll(() => page.getByText(/\d rows, /).count(), { timeout: 60_000 }).toBeGreaterThan(0);
+    await page.getByLabel('Name', { exact: true }).fill('Gate Field');
+    await page.getByLabel('Variety').fill('Carignan');
+    await page.getByRole('button', { name: 'Make block' }).click();
+    await page.waitForURL(/\/blocks\/[0-9a-f-]{36}$/);
+    blockPath = new URL(page.url()).pathname;
+    await page.getByRole('heading', { name: /Gate Field/ }).waitFor();
+    await expectAccessible(page);
+    await context.close();
+  });
+
+  it('and brings vigour, soil and elevation, answering what only a person knows', async () => {
+    const { page, context } = await app.signIn('agronomist');
+    await page.goto(`${app.url}/e/${estateId}/imports`);
+    await page.locator('input[type=file]').setInputFiles([vigourFile(), soilZip(), elevationFile()]);
+    await page.locator('li.import-line', { hasText: 'gate-elevation.tif' }).waitFor({ timeout: 90_000 });
+    await answer(page, 'gate-vigour.tif', { 'What is it?': 'Vigour image', 'What shall be made of its bands?': 'NDVI (near infrared, red)', 'Which band is near infrared?': '2', 'Which band is red?': '1 · grey', 'When was it taken?': '2026-07-14', 'How were the alleys?': 'mown' });
+    await answer(page, 'gate-soil.zip', { 'What is it?': 'Soil', 'Which field holds the value?': 'AWC_MM', 'Are these values or classes?': 'values', 'When was it taken?': '2020-03-01' });
+    await answer(page, 'gate-elevation.tif', { 'What is it?': 'Elevation', 'What shall be made of its bands?': 'one band as it is', 'Which band?': '1 · grey', 'In which unit?': 'metres', 'When was it taken?': '2019-01-01' });
+    await page.goto(`${app.url}${blockPath}`);
+    await expect.poll(() => page.getByText('gate-vigour').count(), { timeout: 60_000 }).toBeGreaterThan(0);
+    await context.close();
+  });
+
+  it('refuses a file that is no image with the true reason and keeps nothing', async () => {
+    const { page, context } = await app.signIn('agronomist');
+    await page.goto(`${app.url}/e/${estateId}/imports`);
+    await page.locator('input[type=file]').setInputFiles({ name: 'holiday.tif', mimeType: 'image/tiff', buffer: Buffer.from('<html>not an image</html>') });
+    const line = page.locator('li.import-line', { hasText: 'holiday.tif' });
+    await line.getByText('Refused', { exact: true }).waitFor({ timeout: 60_000 });
+    await line.getByText(/It is a web page/).first().waitFor();
+    const kept = await page.request.get(`${app.url}/api/estates/${estateId}/imports`);
+    const { items } = (await kept.json()) as { items: { fileName: string; fileId: string | null; layers: unknown[] }[] };
+    expect(items.filter(({ fileName }) => fileName === 'holiday.tif').map(({ fileId, layers }) => ({ fileId, layers }))).toEqual([{ fileId: null, layers: [] }]);
+    await context.close();
+  });
+
+  it('runs zoning in the background, leaves, and reads the verdict later', async () => {
+    const { page, context } = await app.signIn('agronomist');
+    await page.goto(`${app.url}${blockPath}/zoning`);
+    await page.getByRole('button', { name: 'Run', exact: true }).click();
+    await page.waitForURL(/\/zoning\/[0-9a-f-]{36}$/);
+    const address = page.url();
+    await page.goto(`${app.url}/e/${estateId}/estate`);
+    await page.goto(address);
+    await page.getByRole('heading', { name: 'Why this many' }).waitFor({ timeout: 120_000 });
+    await expect.poll(() => page.locator('h1').innerText(), { timeout: 60_000 }).toMatch(/zon|one/i);
+    await page.getByRole('button', { name: /2 zones/ }).first().click();
+    await expectAccessible(page);
+    await context.close();
+  });
+
+  it('the manager keeps two zones, names one, undoes, redoes and publishes', async () => {
+    const { page, context } = await app.signIn('manager');
+    await page.goto(`${app.url}${blockPath}/zoning`);
+    await page.getByRole('button', { name: /2 zones/ }).first().click();
+    await page.getByRole('button', { name: /Keep two as a draft/ }).click();
+    await page.waitForURL(/\/zonings\/[0-9a-f-]{36}\/edit$/);
+    await page.getByText('Zone 1', { exact: true }).first().click();
+    await page.getByLabel('Name', { exact: true }).fill('Gate bank');
+    await page.getByRole('button', { name: 'Name it' }).click();
+    await page.getByText('Named zone 1 Gate bank').waitFor();
+    await page.getByRole('button', { name: 'Undo' }).click();
+    await page.getByText('Undone, can be redone').waitFor();
+    await page.getByRole('button', { name: 'Redo' }).click();
+    await page.getByText('Undone, can be redone').waitFor({ state: 'detached' });
+    await expectAccessible(page);
+    await page.getByRole('button', { name: /Publish version/ }).click();
+    await page.waitForURL(/\/zones$/);
+    await context.close();
+  });
+
+  it('the manager plans the samples and sends them to the crew', async () => {
+    const { page, context } = await app.signIn('manager');
+    await page.goto(`${app.url}/e/${estateId}/sampling`);
+    await page.locator('select').first().selectOption({ label: 'Gate Field' });
+    await page.getByRole('link', { name: 'New plan' }).click();
+    await page.getByRole('button', { name: 'Draw the vines' }).click();
+    await page.getByRole('button', { name: 'Lock plan' }).click();
+    await page.getByRole('dialog').getByRole('button', { name: 'Lock plan' }).click();
+    await page.waitForURL(/\/targets$/);
+    await page.getByText('Nuno Alvor').first().click();
+    await page.getByRole('button', { name: /Send/ }).click();
+    await expect.poll(() => page.getByRole('table').filter({ hasText: 'Nuno Alvor' }).count(), { timeout: 60_000 }).toBeGreaterThan(0);
+    await context.close();
+  });
+
+  it('the crew walks and records on a phone', async () => {
+    const { page, context } = await app.signIn('crew', { phone: true });
+    await page.goto(`${app.url}/e/${estateId}/field`);
+    await page.getByText('Gate Field').first().waitFor({ timeout: 60_000 });
+    await page.locator('section', { has: page.getByRole('heading', { name: 'Gate Field' }) }).getByRole('button', { name: 'Start the walk' }).click();
+    await page.getByRole('button', { name: 'I have read this' }).click();
+    await page.getByText(/^Row \d+, vine \d+/).first().waitFor();
+    await expectAccessible(page);
+    const before = await page.getByText(/^Row \d+, vine \d+/).first().innerText();
+    for (const key of ['2', '2']) await page.getByRole('button', { name: key, exact: true }).click();
+    await page.getByRole('button', { name: 'Save and next' }).click();
+    await expect.poll(() => page.locator('body').innerText(), { timeout: 30_000 }).not.toContain(`${before}\n`);
+    await expect
+      .poll(async () => {
+        const answer = await page.request.get(`${app.url}/api/estates/${estateId}/readings?block=${blockPath.split('/').at(-1)}`);
+        return ((await answer.json()) as { items: unknown[] }).items.length;
+      }, { timeout: 60_000 })
+      .toBeGreaterThan(0);
+    await context.close();
+  });
+
+  it('the owner invites a person, reads the mail, changes a role and ends access', async () => {
+    const { page, context } = await app.signIn('owner');
+    await page.goto(`${app.url}/e/${estateId}/people`);
+    await page.getByRole('button', { name: 'Invite a person' }).click();
+    await page.getByLabel('E-mail').fill('new.hand@example.org');
+    await page.getByLabel('Role').selectOption('lab');
+    await page.getByRole('button', { name: 'Send invitation' }).click();
+    await page.getByText('new.hand@example.org').first().waitFor();
+    await page.getByRole('link', { name: 'Outbox' }).click();
+    await page.getByText(/Your invitation to Marlhaven/).first().click();
+    await page.getByText(/\/join\//).first().waitFor();
+    await page.goto(`${app.url}/e/${estateId}/people`);
+    await page.getByText('Lucía Serra').click();
+    await page.getByLabel('lab', { exact: true }).check();
+    await page.getByRole('button', { name: 'Keep these roles' }).click();
+    await page.getByText('Roles of Lucía Serra are changed.').waitFor();
+    await page.getByText('Lucía Serra', { exact: true }).first().click();
+    await page.getByRole('button', { name: 'End access' }).first().click();
+    await page.getByRole('dialog').getByRole('button', { name: 'End access' }).click();
+    await page.getByText('Lucía Serra has no access any more.').waitFor();
+    await expectAccessible(page);
+    await context.close();
+  });
+});

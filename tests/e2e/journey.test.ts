@@ -158,6 +158,30 @@ describe('from a vigour image to a pick lot', () => {
     await context.close();
   });
 
+  it('the winemaker sees ranges and how many more, and ties zones of two blocks into a lot', async () => {
+    const { page, context } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/ripeness`);
+    await page.getByLabel('Block', { exact: true }).selectOption({ label: 'Long Furrow' });
+    await page.getByRole('heading', { name: 'How many more' }).waitFor({ timeout: 60_000 });
+    await page.goto(`${app.url}/e/${estateId}/lots`);
+    await page.getByText('Marl red').filter({ visible: true }).first().waitFor({ timeout: 60_000 });
+    await page.getByRole('button', { name: 'New lot' }).click();
+    await page.getByLabel('Name', { exact: true }).fill('Gate and Furrow');
+    await page.getByRole('button', { name: 'Make the lot' }).click();
+    await page.getByText('Gate and Furrow', { exact: true }).filter({ visible: true }).first().waitFor();
+    const board = async () => (await (await page.request.get(`${app.url}/api/estates/${estateId}/lots`)).json()) as { lots: { id: string; name: string; version: number; lines: { blockName: string }[]; summary: { tonnes: { value: number; halfWidth: number } } }[]; zones: { zoneId: string; blockName: string; freeShare: number }[] };
+    for (const block of ['Gate Field', 'Long Furrow']) {
+      await page.getByRole('table', { name: 'Tonnes by zone' }).getByRole('row').filter({ hasText: block }).filter({ hasText: 'free' }).first().click();
+      await page.locator('.button-row', { hasText: 'Put in' }).getByRole('button', { name: 'Gate and Furrow', exact: true }).click();
+      await expect.poll(async () => (await board()).lots.find((lot) => lot.name === 'Gate and Furrow')!.lines.map((line) => line.blockName), { timeout: 30_000 }).toContain(block);
+    }
+    const lot = (await board()).lots.find(({ name }) => name === 'Gate and Furrow')!;
+    expect(lot.summary.tonnes.value).toBeGreaterThan(0);
+    expect(lot.summary.tonnes.halfWidth).toBeGreaterThan(0);
+    await expectAccessible(page);
+    await context.close();
+  });
+
   it('the owner invites a person, reads the mail, changes a role and ends access', async () => {
     const { page, context } = await app.signIn('owner');
     await page.goto(`${app.url}/e/${estateId}/people`);

@@ -5,7 +5,7 @@
 
 import { gridOfOutline, type Cells, type Grid } from '../../shared/analysis/grid.ts';
 import { randomNormal, type Random } from '../../shared/analysis/random.ts';
-import { inverseDistance } from '../../shared/analysis/resamplePoints.ts';
+import { inverseDistance, type ValuedPoints } from '../../shared/analysis/resamplePoints.ts';
 import { smooth } from '../../shared/analysis/smooth.ts';
 import type { RingXY, XY } from '../../shared/geo/coordinates.ts';
 import { added, planeField, smoothField, stripeField, whiteField } from './simulatedFields.ts';
@@ -20,6 +20,8 @@ export interface SimulatedBlock {
   readonly areaM2: number;
   readonly vigour: Cells;
   readonly conductivity: Cells;
+  /** The readings that conductivity is interpolated from. */
+  readonly survey: ValuedPoints;
   /** True zone 1…k per cell, 0 outside; all 1 for noise and slopes. */
   readonly truth: Uint8Array;
   readonly k: number;
@@ -88,14 +90,14 @@ interface Raw {
   readonly soilNoise: number;
 }
 
-/** Vigour smoothed as the pipeline does it, conductivity measured along rows and interpolated. */
+/** Vigour as a camera gives it, conductivity measured along rows and interpolated. */
 function finished(grid: Grid, { areaHa, random }: BlockOptions, raw: Raw): SimulatedBlock {
-  const vigour = smooth(grid, Float32Array.from(raw.vigour, (value) => 0.65 + 0.06 * value), { sigmaM: 3, fillMissing: true });
-  const points = surveyAlongRows(grid, raw, random);
-  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, points), truth: Uint8Array.from(grid.inside), k: 1 };
+  const vigour = Float32Array.from(raw.vigour, (value, cell) => (grid.share[cell]! > 0 ? 0.65 + 0.06 * value : NaN));
+  const survey = surveyAlongRows(grid, raw, random);
+  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, survey), survey, truth: Uint8Array.from(grid.inside), k: 1 };
 }
 
-function surveyAlongRows(grid: Grid, { soil, soilNoise }: Raw, random: Random) {
+function surveyAlongRows(grid: Grid, { soil, soilNoise }: Raw, random: Random): ValuedPoints {
   const angle = Math.PI * random();
   const [x, y, value]: [number[], number[], number[]] = [[], [], []];
   const reach = Math.hypot(grid.cols, grid.rows) * grid.cellSizeM;

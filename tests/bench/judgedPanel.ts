@@ -1,0 +1,56 @@
+/** Simulated blocks of one kind with what the evidence stage says of each. */
+
+import { seededRandom } from '../../shared/analysis/random.ts';
+import type { Verdict } from '../../shared/analysis/verdict.ts';
+import { adviseZoneCount } from '../../shared/analysis/zoneCount.ts';
+import { weighEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { prepareLayers } from '../../shared/analysis/zoningPrepare.ts';
+import { defaultZoningOptions } from '../../shared/analysis/zoning.ts';
+import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
+import { noiseBlock, slopeBlock, zonedBlock, type NoiseKind, type SimulatedBlock, type SlopeKind } from './simulatedBlock.ts';
+
+export type PanelKind = NoiseKind | SlopeKind | 'zones';
+
+export interface PanelOptions {
+  readonly kind: PanelKind;
+  readonly areaHa: number;
+  readonly cellSizeM: number;
+  readonly count: number;
+  readonly firstSeed: number;
+  /** Width over which zones pass into each other; zones only. */
+  readonly edgeM?: number;
+}
+
+export interface JudgedBlock {
+  readonly verdict: Verdict;
+  readonly advisedK: number;
+  readonly trueK: number;
+}
+
+export function judgedPanel(options: PanelOptions): JudgedBlock[] {
+  return Array.from({ length: options.count }, (_, at) => {
+    const block = blockOf(options, at);
+    const { verdict, curve, layerCount } = weighEvidence({ ...evidenceOf(block), seed: options.firstSeed + at });
+    const count = adviseZoneCount({ curve, layerCount, workable: [2, 3, 4, 5, 6] });
+    return { verdict: verdict.verdict, advisedK: count.best, trueK: block.k };
+  });
+}
+
+/** The layers of a simulated block as a zoning takes them; vigour is not smoothed yet. */
+export function layersOf({ vigour, conductivity }: SimulatedBlock): ZoningLayer[] {
+  return [
+    { id: 'vigour', type: 'vigour', role: 'evidence', kind: 'number', cells: vigour, weight: null },
+    { id: 'conductivity', type: 'conductivity', role: 'evidence', kind: 'number', cells: conductivity, weight: null },
+  ];
+}
+
+function blockOf({ kind, areaHa, cellSizeM, firstSeed, edgeM = 6 }: PanelOptions, at: number): SimulatedBlock {
+  const options = { areaHa, cellSizeM, random: seededRandom(1000 * (firstSeed + at) + kind.length + kind.charCodeAt(0)) };
+  if (kind === 'zones') return zonedBlock({ ...options, k: 2 + (at % 4), difficulty: 0.5, edgeM });
+  return kind === 'white' || kind === 'short' || kind === 'stripes' ? noiseBlock(kind, options) : slopeBlock(kind, options);
+}
+
+function evidenceOf(block: SimulatedBlock) {
+  const { layers } = prepareLayers(block.grid, layersOf(block), defaultZoningOptions);
+  return { grid: block.grid, areaM2: block.areaM2, layers, weights: layers.map(() => 1) };
+}

@@ -1,0 +1,29 @@
+/**
+ * npm run bench -- [--verdict | --zones] [--count N] [--seed N]        quality on simulated blocks, a line of JSON a row
+ * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}']   speed, as JSON
+ */
+
+import { parseArgs } from 'node:util';
+import { benchPipeline } from './benchPipeline.ts';
+import { benchVerdict } from './benchVerdict.ts';
+import { benchZones } from './benchZones.ts';
+
+const { values } = parseArgs({
+  options: {
+    verdict: { type: 'boolean', default: false },
+    zones: { type: 'boolean', default: false },
+    count: { type: 'string' },
+    seed: { type: 'string', default: '1000' },
+    runs: { type: 'string', default: '3' },
+    cell: { type: 'string', default: '2' },
+    data: { type: 'string' },
+    against: { type: 'string' },
+  },
+});
+
+const print = (value: unknown) => process.stdout.write(`${JSON.stringify(value, (_, each: unknown) => (typeof each === 'number' && !Number.isInteger(each) ? Number(each.toPrecision(4)) : each))}\n`);
+const seed = Number(values.seed);
+
+if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed)) print(row);
+else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
+else print(benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? null }));

@@ -17,6 +17,8 @@ export function requireFile(path: string, option: string): void {
 export function readOptionsFor(path: string, options: Readonly<Record<string, string>>, nearLonLat: LonLat | null): RasterReadOptions {
   const { epsg, nodata, lat, lon, layer } = options;
   const answers: ImportAnswers = {
+    // A file that lies elsewhere is told so, with the distance, when it is laid on the block.
+    placement: 'keep',
     ...(epsg === undefined ? {} : { epsg: numberOption('epsg', epsg) }),
     ...(nodata === undefined ? {} : { noData: nodata === 'none' ? null : numberOption('nodata', nodata) }),
     ...(layer === undefined ? {} : { layer }),
@@ -45,7 +47,6 @@ const answeredBy: Partial<Record<ImportQuestion['code'], string>> = {
   'no-data': '#nodata=NUMBER or #nodata=none',
   layer: '#layer=NAME',
   columns: '#lat=COLUMN,lon=COLUMN',
-  placement: '#epsg=CODE',
 };
 
 /** A question that the file leaves open becomes one line saying which option answers it. */

@@ -1,0 +1,101 @@
+import { existsSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
+import { dirname, resolve } from 'node:path';
+import { AnalysisError } from '../../shared/analysis/analysisError.ts';
+import { makeZoning } from '../../shared/analysis/zoning.ts';
+import type { ZoningReadings } from '../../shared/analysis/zoningTypes.ts';
+import { ImportProblem } from '../importers/importProblem.ts';
+import { BadInput, readArguments, type ZoneArguments } from './zoneArguments.ts';
+import { readBlock, type Block } from './zoneFiles.ts';
+import { readLayer, type ReadLayer } from './zoneLayers.ts';
+import { zonesGeoJson, zoningReport } from './zoneReport.ts';
+
+/**
+ * Zones of one block from files, without server or database.
+ * Exit code 0 done; 2 input that cannot be used, with one line on standard error and nothing written; 1 a fault of ours.
+ */
+
+export interface CommandOutcome {
+  readonly exitCode: 0 | 1 | 2;
+  /** One line for standard output when done, for standard error otherwise. */
+  readonly line: string;
+}
+
+/** Runs the command to its end; never throws. */
+export async function runZoneCommand(args: readonly string[]): Promise<CommandOutcome> {
+  try {
+    return { exitCode: 0, line: await run(args, createStopwatch()) };
+  } catch (error) {
+    const isTheirs = error instanceof BadInput || error instanceof ImportProblem || error instanceof AnalysisError;
+    if (isTheirs) return { exitCode: 2, line: error.message.replace(/\s*\n\s*/g, ' ') };
+    return { exitCode: 1, line: `A fault of the program, please report it: ${error instanceof Error ? error.stack : String(error)}` };
+  }
+}
+
+async function run(args: readonly string[], stopwatch: Stopwatch): Promise<string> {
+  const asked = readArguments(args);
+  for (const path of [asked.outPath, asked.reportPath]) requireFolder(path);
+  stopwatch.lap('start');
+  const block = await readBlock(asked.blockPath, asked.cellSizeM);
+  stopwatch.lap('block');
+  const layers: ReadLayer[] = [];
+  for (const argument of asked.layers) {
+    layers.push(await readLayer(block, argument, asked.layerWeights));
+    stopwatch.lap(`layer ${argument.id}`);
+  }
+  const readings = await readingsOf(block, asked);
+  stopwatch.lap('readings');
+  const { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed } = asked;
+  const options = { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed };
+  const result = makeZoning({ grid: block.grid, layers: layers.map(({ layer }) => layer), options, readings }, (stage) => stopwatch.lap(stage));
+  const chosen = result.candidates[result.chosenK - 1]!;
+  const geoJson = JSON.stringify(zonesGeoJson(chosen.zones));
+  stopwatch.lap('write');
+  const notes = Object.fromEntries(layers.map(({ layer, notes: own }) => [layer.id, own]));
+  const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
+  writeTogether([[asked.outPath, geoJson], ...(asked.reportPath === null ? [] : [[asked.reportPath, JSON.stringify(report, null, 1)] as [string, string]])]);
+  return `${chosen.zones.length} ${chosen.zones.length === 1 ? 'zone' : 'zones'} on ${report.grid.areaHa.toFixed(2)} ha; verdict ${result.verdict.verdict}, advised ${result.advisedK}. Written: ${asked.outPath}`;
+}
+
+async function readingsOf(block: Block, { readingsPath }: ZoneArguments): Promise<ZoningReadings[]> {
+  if (readingsPath === null) return [];
+  const { readReadings } = await import('./zoneReadings.ts');
+  return readReadings(block, readingsPath);
+}
+
+function requireFolder(path: string | null): void {
+  if (path === null) return;
+  const folder = dirname(resolve(path));
+  if (!existsSync(folder) || !statSync(folder).isDirectory()) throw new BadInput(`The folder ${folder} does not exist; make it first or write elsewhere.`);
+}
+
+/** All files or none: written beside their places first, then moved. */
+function writeTogether(files: readonly (readonly [path: string, text: string])[]): void {
+  const drafts = files.map(([path]) => `${path}.${process.pid}.part`);
+  try {
+    files.forEach(([, text], i) => writeFileSync(drafts[i]!, text));
+    files.forEach(([path], i) => renameSync(drafts[i]!, path));
+  } catch (error) {
+    drafts.forEach((draft) => rmSync(draft, { force: true }));
+    const detail = error instanceof Error ? error.message : 'unknown error';
+    throw new BadInput(`The result could not be written (${detail}); check the folder and its permissions.`, { cause: error });
+  }
+}
+
+interface Stopwatch {
+  lap(stage: string): void;
+  seconds(): Record<string, number>;
+}
+
+/** Seconds by stage; the first lap counts from the start of the process. */
+function createStopwatch(): Stopwatch {
+  const laps: Record<string, number> = {};
+  let last = 0;
+  return {
+    lap(stage: string) {
+      const now = performance.now();
+      laps[stage] = (laps[stage] ?? 0) + (now - last) / 1000;
+      last = now;
+    },
+    seconds: () => ({ ...laps }),
+  };
+}

@@ -2,6 +2,8 @@ import { createHash } from 'node:crypto';
 import { readFileSync } from 'node:fs';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import { Job } from '../../server/models/Job.ts';
+import { placeLayerJob } from '../../server/services/imports/placeLayer.ts';
 import { writeTiff } from '../core/importers/writeTiff.ts';
 import { jobEnd, startFiles, type Files } from './support/withFiles.ts';
 import { lonLatAt, place, rectangle } from './support/shapes.ts';
@@ -378,6 +380,16 @@ describe('what was received', () => {
     const left = (await layersOn(west.id)).map((layer) => layer.id);
     for (const layer of done.layers) expect(left).not.toContain(layer.id);
     expect((await agent.get(`${base()}/layers/${done.layers[0]!.id}/cells?block=${west.id}`)).status).toBe(404);
+  });
+
+  it('a job that runs once more, as after a crash, leaves one set of layers', async () => {
+    const done = await bring({ name: 'twice_dem.tif', bytes: picture((_x, y) => 200 + y) }, { purpose: 'elevation', unit: 'm' });
+    const job = await Job.query().findOne({ subjectId: done.id, kind: 'placeLayer' }).throwIfNotFound();
+    const again = (await placeLayerJob.work({ job, report: () => Promise.resolve() })) as { layerIds: string[]; blocks: number };
+    expect(again.layerIds.sort()).toEqual(done.layers.map((layer) => layer.id).sort());
+    expect(again.blocks).toBe((job.result as { blocks: number }).blocks);
+    const now = (await agent.get(`${base()}/imports/${done.id}`)).body;
+    expect(now.layers).toHaveLength(4);
   });
 
   it('a dismissed line leaves the desk, what was made of it stays', async () => {

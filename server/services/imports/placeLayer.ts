@@ -31,13 +31,16 @@ export const placeLayerJob: JobHandler = {
 async function placeImport(context: JobContext): Promise<{ layerIds: string[]; blocks: number }> {
   const { estateId, subjectId, createdBy } = context.job;
   const record = await FileImport.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
+  if (record.state === 'done') return placedBefore(record);
   const blocks = await targetBlocks(estateId);
   const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks, withRelief: true })).catch(async (error: unknown) => {
     const problem = problemNote(error);
-    if (problem !== null) await FileImport.query().where({ estateId, id: record.id }).patch(storable({ state: 'refused' as const, problem }));
+    if (problem !== null) await FileImport.query().where({ estateId, id: record.id, state: 'ready' }).patch(storable({ state: 'refused' as const, problem }));
     throw error;
   });
   return FileImport.transaction(async (trx) => {
+    const line = await FileImport.query(trx).findOne({ estateId, id: record.id }).forUpdate().throwIfNotFound();
+    if (line.state === 'done') return placedBefore(line);
     const layerIds = await storeLayers(trx, record, placed);
     const { relief } = placed[0]!;
     if (relief && relief.cells.length > 0) await keepRelief(trx, estateId, { ...relief, cells: Buffer.from(encodeCells(relief.cells)) });
@@ -45,6 +48,13 @@ async function placeImport(context: JobContext): Promise<{ layerIds: string[]; b
     await writeAudit(trx, { estateId, personId: createdBy }, { action: 'layer.place', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) } });
     return { layerIds, blocks: placed[0]!.blocks.length };
   });
+}
+
+/** A job that ran before, or ran twice after a crash, must not lay the same file down again. */
+async function placedBefore({ estateId, id }: FileImport): Promise<{ layerIds: string[]; blocks: number }> {
+  const layers = await Layer.query().where({ estateId, importId: id }).orderBy('createdAt');
+  const [main] = layers;
+  return { layerIds: layers.map((layer) => layer.id), blocks: main ? await BlockLayer.query().where({ estateId, layerId: main.id }).resultSize() : 0 };
 }
 
 /** The main layer first: layers that follow from it refer to it. */

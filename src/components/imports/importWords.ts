@@ -43,7 +43,7 @@ export function understoodWords(line: ImportView, { t, format }: Words): string 
 }
 
 function coversWords(line: ImportView, { t, format }: Pick<Words, 't' | 'format'>): string {
-  if (line.state === 'done' && line.layers.length > 0) return t('imports.placedAs', { types: format.list(line.layers.map((layer) => t(`layers.type.${layer.type}`, {}).toLowerCase())) });
+  if (line.state === 'done' && line.layers.length > 0) return t('imports.placedAs', { types: format.list([...new Set(line.layers.map((layer) => t(`layers.type.${layer.type}`, {}).toLowerCase()))]) });
   if (line.covers.length === 0) return '';
   const named = line.covers.slice(0, 4).map((block) => (block.share > 0.995 ? block.name : t('imports.partOf', { block: block.name, share: format.percent(Math.floor(block.share * 100) / 100) })));
   const more = line.covers.length - named.length;
@@ -55,7 +55,8 @@ export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te, f
   const key = `imports.${kind}.${note.code}`;
   if (!te(key)) return { text: note.text, detail: null };
   const named = Object.fromEntries(Object.entries(note.params).map(([name, value]) => [name, typeof value === 'number' ? format.number(value, Number.isInteger(value) ? 0 : 2) : value]));
-  return { text: t(key, named), detail: kind === 'problem' ? note.text : null };
+  const count = note.params.count ?? note.params.shapes;
+  return { text: typeof count === 'number' ? t(key, named, count) : t(key, named), detail: kind === 'problem' ? note.text : null };
 }
 
 /** The words of an answer: the file's own, or ours for the value. */

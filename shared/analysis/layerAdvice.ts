@@ -35,7 +35,7 @@ const REPEATS_ABOVE = 0.9;
 const LEAST_DEVIATIONS = 3;
 const LEAST_EXCESS = 0.15;
 /** Edges are compared on a coarse plane; the comparison is one of many small transforms. */
-const MOST_EDGE_CELLS = 1500;
+const MOST_EDGE_CELLS = 1000;
 const RARE_SHARE = 0.02;
 const LEAST_COVERED = 0.9;
 const SPREAD_CELLS = 5000;

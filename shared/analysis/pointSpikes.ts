@@ -15,37 +15,50 @@ const leastAround = 5;
 
 /** Ten readings of 20 to 22 in a row and one of 90 among them: the 90 is a spike. */
 export function spikes({ x, y, value }: ValuedPoints): Uint8Array {
-  const squares = new PointSquares(x, y);
-  const differences = Float64Array.from(value, (own, point) => {
-    const around = squares.around(point).filter((other) => other !== point).map((other) => value[other]!);
-    return around.length < leastAround ? 0 : own - median(around);
-  });
-  const scale = 1.4826 * median(Array.from(differences, Math.abs));
+  const squares = squaresOf(x, y);
+  const around = new Float64Array(x.length);
+  const differences = new Float64Array(x.length);
+  for (let point = 0; point < x.length; point++) {
+    const count = gather(squares, point, value, around);
+    differences[point] = count < leastAround ? 0 : value[point]! - median(around.subarray(0, count));
+  }
+  const scale = 1.4826 * median(differences.map(Math.abs));
   return Uint8Array.from(differences, (difference) => (scale > 0 && Math.abs(difference) > limit * scale ? 1 : 0));
 }
 
-class PointSquares {
-  private readonly squareOf: Int32Array;
-  private readonly members: number[][];
-  private readonly cols: number;
+/** Points by square: those of square s are order[start[s]] … order[start[s + 1] − 1]. */
+interface Squares {
+  readonly squareOf: Int32Array;
+  readonly start: Int32Array;
+  readonly order: Int32Array;
+  readonly cols: number;
+}
 
-  constructor(x: Float64Array, y: Float64Array) {
-    const [minX, maxX] = rangeOf(x);
-    const [minY, maxY] = rangeOf(y);
-    const sideM = Math.max(1e-6, Math.sqrt(((maxX - minX) * (maxY - minY) * pointsPerSquare) / Math.max(1, x.length)), Math.max(maxX - minX, maxY - minY) / 1000);
-    this.cols = Math.floor((maxX - minX) / sideM) + 3;
-    // An empty border of squares saves asking whether a neighbour exists.
-    this.squareOf = Int32Array.from(x, (east, point) => (Math.floor((y[point]! - minY) / sideM) + 1) * this.cols + Math.floor((east - minX) / sideM) + 1);
-    this.members = Array.from({ length: this.cols * (Math.floor((maxY - minY) / sideM) + 3) }, () => []);
-    this.squareOf.forEach((square, point) => this.members[square]!.push(point));
-  }
+function squaresOf(x: Float64Array, y: Float64Array): Squares {
+  const [minX, maxX] = rangeOf(x);
+  const [minY, maxY] = rangeOf(y);
+  const sideM = Math.max(1e-6, Math.sqrt(((maxX - minX) * (maxY - minY) * pointsPerSquare) / Math.max(1, x.length)), Math.max(maxX - minX, maxY - minY) / 1000);
+  const cols = Math.floor((maxX - minX) / sideM) + 3;
+  const count = cols * (Math.floor((maxY - minY) / sideM) + 3);
+  // An empty border of squares saves asking whether a neighbour exists.
+  const squareOf = Int32Array.from(x, (east, point) => (Math.floor((y[point]! - minY) / sideM) + 1) * cols + Math.floor((east - minX) / sideM) + 1);
+  const start = new Int32Array(count + 1);
+  for (const square of squareOf) start[square + 1]!++;
+  for (let square = 0; square < count; square++) start[square + 1]! += start[square]!;
+  const next = start.slice();
+  const order = new Int32Array(x.length);
+  squareOf.forEach((square, point) => (order[next[square]!++] = point));
+  return { squareOf, start, order, cols };
+}
 
-  around(point: number): number[] {
-    const own = this.squareOf[point]!;
-    const found: number[] = [];
-    for (const row of [-this.cols, 0, this.cols]) for (const col of [-1, 0, 1]) found.push(...this.members[own + row + col]!);
-    return found;
+/** Copies the values of the other points in the nine squares around one into `found`; returns how many. */
+function gather({ squareOf, start, order, cols }: Squares, point: number, value: Float64Array, found: Float64Array): number {
+  const own = squareOf[point]!;
+  let count = 0;
+  for (let first = own - cols - 1; first <= own + cols - 1; first += cols) {
+    for (let at = start[first]!; at < start[first + 3]!; at++) if (order[at] !== point) found[count++] = value[order[at]!]!;
   }
+  return count;
 }
 
 function rangeOf(values: Float64Array): [number, number] {
@@ -57,8 +70,9 @@ function rangeOf(values: Float64Array): [number, number] {
   return values.length === 0 ? [0, 0] : [low, high];
 }
 
-function median(values: number[]): number {
-  const sorted = values.sort((a, b) => a - b);
+/** Sorts what it is given. */
+function median(values: Float64Array): number {
+  const sorted = values.sort();
   const middle = sorted.length >> 1;
   return sorted.length === 0 ? 0 : sorted.length % 2 === 1 ? sorted[middle]! : (sorted[middle - 1]! + sorted[middle]!) / 2;
 }

@@ -52,8 +52,8 @@ const LEAST_SINGLE_STRUCTURE = 0.2;
 /** A gap of 0.5 leaves 40 % less within the zones than in fields without zones; small blocks need more to be believed. */
 const LEAST_GAP = 0.5;
 const LEAST_GAP_SMALL = 0.65;
-/** … and it must lie this many standard deviations above what the random fields do among themselves. */
-const LEAST_GAP_DEVIATIONS = 2.5;
+/** … and it must lie three standard deviations above what the random fields do among themselves, as control charts ask. */
+const LEAST_GAP_DEVIATIONS = 3;
 export const SMALL_AREA_M2 = 10_000;
 
 export interface VerdictInput {

@@ -8,7 +8,6 @@
 import { polygonsArea } from '../geo/rings.ts';
 import { AnalysisError } from './analysisError.ts';
 import { assertCellCount } from './grid.ts';
-import { highestLabel } from './labels.ts';
 import { adviseLayers } from './layerAdvice.ts';
 import { polygonise } from './polygonise.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
@@ -20,6 +19,7 @@ import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones } from '.
 import { decideWeights, prepareLayers, weightedColumns } from './zoningPrepare.ts';
 import { rateFits } from './zoningQuality.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
+import { zoneCountOf } from './zoningStats.ts';
 import type { StageMark, ZoningCandidate, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
@@ -118,5 +118,5 @@ function fruitCheck({ labels }: ZoningCandidate, readings: readonly ZoningReadin
 
 /** Numbers above one whose zones have all survived clean-up. */
 function workableNumbers(cleaned: readonly CellZones[]): number[] {
-  return cleaned.flatMap(({ labels }, i) => (i > 0 && highestLabel(labels) === i + 1 ? [i + 1] : []));
+  return cleaned.flatMap(({ labels }, i) => (i > 0 && zoneCountOf(labels) === i + 1 ? [i + 1] : []));
 }

@@ -6,7 +6,6 @@
 import type { Cells, Grid, Labels } from './grid.ts';
 import { majorityFiltered, renumberedByMean } from './labels.ts';
 import { cellsForArea, sieveByBorder } from './sieve.ts';
-import { findPatches } from './sievePatches.ts';
 import type { CellZones } from './zoningFit.ts';
 
 const MAJORITY_PASSES = 2;
@@ -27,9 +26,35 @@ export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, orderB
   return { labels: renumberedByMean(cleaned, orderBy), doubt };
 }
 
-/** Connected patches of each zone, by zone number. */
-export function patchesPerZone(grid: Grid, labels: Labels): Int32Array {
+/** Patches of each zone, by zone number: cells that share an edge are one patch. Rows are joined run by run. */
+export function patchesPerZone({ cols, rows }: Grid, labels: Labels): Int32Array {
   const counts = new Int32Array(256);
-  for (const label of findPatches(labels, grid.cols, 4).labels) counts[label]!++;
+  const parents: number[] = [];
+  const rootOf = (run: number) => {
+    let at = run;
+    while (parents[at] !== at) at = parents[at] = parents[parents[at]!]!;
+    return at;
+  };
+  let above = new Int32Array(cols).fill(-1);
+  let here = new Int32Array(cols);
+  for (let row = 0; row < rows; row++) {
+    for (let col = 0; col < cols; col++) {
+      const label = labels[row * cols + col]!;
+      if (label === 0) {
+        here[col] = -1;
+        continue;
+      }
+      const continues = col > 0 && labels[row * cols + col - 1] === label;
+      const run = continues ? here[col - 1]! : parents.push(parents.length) - 1;
+      here[col] = run;
+      if (!continues) counts[label]!++;
+      if (row === 0 || labels[(row - 1) * cols + col] !== label) continue;
+      const [upper, lower] = [rootOf(above[col]!), rootOf(run)];
+      if (upper === lower) continue;
+      parents[lower] = upper;
+      counts[label]!--;
+    }
+    [above, here] = [here, above];
+  }
   return counts;
 }

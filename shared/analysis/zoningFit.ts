@@ -15,7 +15,7 @@ import { MOST_ZONES } from './verdictGap.ts';
 export const FIT_CELLS = 10_000;
 /** With more cells than the first the many starts run on a part of them. */
 const SEARCH_ALL_CELLS = 3000;
-const SEARCH_CELLS = 1500;
+const SEARCH_CELLS = 1000;
 
 /** A random stream of its own for each use of the seed, so that one stage does not shift the numbers of the next. */
 export function streamOf(seed: number, use: number): Random {

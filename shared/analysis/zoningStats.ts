@@ -1,7 +1,6 @@
 /** What each zone is like: area, patches, mean and spread of every layer, share of doubtful cells. */
 
 import type { Cells, Grid, Labels } from './grid.ts';
-import { highestLabel } from './labels.ts';
 import type { ZonePolygons } from './polygonise.ts';
 import { patchesPerZone } from './zoningClean.ts';
 import type { CellZones } from './zoningFit.ts';
@@ -19,7 +18,7 @@ export interface ZoneStatsInput {
 }
 
 export function describeZones({ grid, layers, zones: { labels, doubt }, drawn }: ZoneStatsInput): Zone[] {
-  const count = highestLabel(labels);
+  const count = zoneCountOf(labels);
   const areas = cellAreas(grid, labels, count);
   const patches = patchesPerZone(grid, labels);
   const doubtful = doubtfulShares(labels, doubt, count);
@@ -37,6 +36,13 @@ export function describeZones({ grid, layers, zones: { labels, doubt }, drawn }:
       polygonsLonLat: polygons?.polygonsLonLat ?? null,
     };
   });
+}
+
+/** Highest zone number in use. */
+export function zoneCountOf(labels: Labels): number {
+  let highest = 0;
+  for (let cell = 0; cell < labels.length; cell++) if (labels[cell]! > highest) highest = labels[cell]!;
+  return highest;
 }
 
 /** Lowest and highest zone mean of each numeric layer, with the spread left within zones. */

@@ -1,7 +1,9 @@
 import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { adjustedRandIndex } from '../../shared/analysis/agreement.ts';
-import { gridOfOutline, type Cells } from '../../shared/analysis/grid.ts';
+import { gridOfOutline, type Cells, type Grid } from '../../shared/analysis/grid.ts';
+import { findPatches } from '../../shared/analysis/sievePatches.ts';
+import { patchesPerZone } from '../../shared/analysis/zoningClean.ts';
 import { seededRandom } from '../../shared/analysis/random.ts';
 import { standardise } from '../../shared/analysis/standardise.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
@@ -218,5 +220,28 @@ describe('real satellite bands and elevation', () => {
   ])('reach the reference within-sum of squares for %i zones', (k, best) => {
     expect(fits[k - 1]!.inertia / best).toBeGreaterThan(0.9999);
     expect(fits[k - 1]!.inertia / best).toBeLessThan(k <= 4 ? 1.001 : 1.01);
+  });
+});
+
+describe('patches of zones', () => {
+  const count = (rows: string[]) => [...patchesPerZone({ cols: rows[0]!.length, rows: rows.length } as Grid, Uint8Array.from(rows.join(''), Number)).slice(0, 4)];
+
+  it('are cells joined by edges, corners apart', () => {
+    expect(count(['112', '122', '211'])).toEqual([0, 2, 2, 0]);
+    expect(count(['12', '21'])).toEqual([0, 2, 2, 0]);
+  });
+
+  it('are one when they join further down or around a hole', () => {
+    expect(count(['101', '101', '111'])).toEqual([0, 1, 0, 0]);
+    expect(count(['1111', '1221', '1221', '1111'])).toEqual([0, 1, 1, 0]);
+    expect(count(['10101', '11111', '30303'])).toEqual([0, 1, 0, 3]);
+  });
+
+  it('agree with the flood fill of the sieve', () => {
+    const random = seededRandom(6);
+    const labels = Uint8Array.from({ length: 40 * 30 }, () => Math.floor(3 * random()));
+    const filled = new Int32Array(256);
+    for (const label of findPatches(labels, 40, 4).labels) filled[label]!++;
+    expect(patchesPerZone({ cols: 40, rows: 30 } as Grid, labels)).toEqual(filled);
   });
 });

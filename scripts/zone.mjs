@@ -28,7 +28,7 @@ async function buildProgram() {
       configFile: false,
       root,
       logLevel: 'warn',
-      build: { ssr: 'server/cli/zone.ts', outDir: draft, emptyOutDir: true, copyPublicDir: false, target: 'node20', minify: false, rollupOptions: { output: { entryFileNames: 'zone.mjs', chunkFileNames: '[name].mjs' } } },
+      build: { ssr: 'server/cli/zone.ts', outDir: draft, emptyOutDir: true, copyPublicDir: false, target: 'node20', minify: true, rollupOptions: { output: { entryFileNames: 'zone.mjs', chunkFileNames: '[name].mjs' } } },
       ssr: { noExternal: true },
     });
     rmSync(folder, { recursive: true, force: true });

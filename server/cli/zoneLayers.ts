@@ -1,14 +1,15 @@
 import type { Feature } from 'geojson';
 import { cleanPoints } from '../../shared/analysis/cleanPoints.ts';
 import type { Cells, Grid } from '../../shared/analysis/grid.ts';
-import { inverseDistance, type ValuedPoints } from '../../shared/analysis/resamplePoints.ts';
+import { inverseDistance } from '../../shared/analysis/resamplePoints.ts';
 import { polygonClasses, polygonMeans } from '../../shared/analysis/resamplePolygons.ts';
 import { terrainOf } from '../../shared/analysis/terrain.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { layerType } from '../../shared/catalog/layerTypes.ts';
 import { sourceUnits, unitFactor } from '../../shared/catalog/sourceUnits.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
-import { polygonsToUtm, toUtm } from '../../shared/geo/utm.ts';
+import { polygonsToUtm } from '../../shared/geo/utm.ts';
+import { toUtmNear } from '../../shared/geo/utmNear.ts';
 import { withSource } from '../importers/byteSource.ts';
 import { sniffFormat } from '../importers/sniffFormat.ts';
 import type { VectorUnderstood } from '../importers/understood.ts';
@@ -90,15 +91,10 @@ function spread(grid: Grid, { lonLat, value }: { lonLat: readonly LonLat[]; valu
   const factor = factorOf(argument);
   const { min, max } = layerType(argument.type);
   const limits = { min: min === null ? null : min / factor, max: max === null ? null : max / factor };
-  const { kept, setAside } = cleanPoints(inMetres(grid, lonLat, value), limits);
+  const { kept, setAside } = cleanPoints({ ...toUtmNear(lonLat, grid.epsg), value }, limits);
   const cells = inverseDistance(grid, kept);
   if (cells.every((each) => Number.isNaN(each))) throw new BadInput(`${argument.path}: none of its ${lonLat.length} points lies within 40 m of the block; check that it is the right file and its positions.`);
   return { cells, kind: 'number', notes: setAside.filter(({ count }) => count > 0).map(({ reason, count }) => `${count} points set aside: ${reason}.`) };
-}
-
-function inMetres(grid: Grid, lonLat: readonly LonLat[], value: Float64Array): ValuedPoints {
-  const places = lonLat.map((position) => toUtm(position, grid.epsg));
-  return { x: Float64Array.from(places, ([east]) => east), y: Float64Array.from(places, ([, north]) => north), value };
 }
 
 async function fromShapes({ grid, middleLonLat }: Block, argument: LayerArgument): Promise<Values> {

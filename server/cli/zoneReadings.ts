@@ -1,6 +1,6 @@
 import { cellAt, type Grid } from '../../shared/analysis/grid.ts';
 import type { ZoningReadings } from '../../shared/analysis/zoningTypes.ts';
-import { toUtm } from '../../shared/geo/utm.ts';
+import { toUtmNear } from '../../shared/geo/utmNear.ts';
 import { readPoints } from '../importers/points/readPoints.ts';
 import { BadInput } from './zoneArguments.ts';
 import { readOptionsFor, requireAnswered, requireFile, type Block } from './zoneFiles.ts';
@@ -15,7 +15,8 @@ export async function readReadings({ grid, middleLonLat }: Block, path: string):
   const options = readOptionsFor(path, {}, middleLonLat);
   const { questions, numbers, texts, pointsLonLat } = await readPoints(path, options);
   requireAnswered(options.fileName, questions);
-  const cells = pointsLonLat.map((position) => cellAt(grid, toUtm(position, grid.epsg)));
+  const { x, y } = toUtmNear(pointsLonLat, grid.epsg);
+  const cells = Array.from(x, (east, at) => cellAt(grid, [east, y[at]!]));
   if (!cells.some((cell) => isInside(grid, cell))) throw new BadInput(`${options.fileName}: none of its ${cells.length} readings lies in the block; check that it is the right file and its positions.`);
   const rows = rowNames(numbers, texts);
   const measures = [...numbers].filter(([name]) => !notMeasures.test(name.trim()));

@@ -9,7 +9,7 @@
 import { fieldRecipe, type FieldRecipe } from './covarianceSpectra.ts';
 import { fittedSurface, withoutSurface } from './covarianceTrend.ts';
 import type { MaskedPlane } from './covariance.ts';
-import { randomNormal, type Random } from './random.ts';
+import type { Random } from './random.ts';
 
 export interface SurrogateModel {
   readonly plane: MaskedPlane;
@@ -50,7 +50,7 @@ function drawNoise({ frequencies, factors, layerCount }: FieldRecipe, planes: re
   const noise = new Float64Array(2 * layerCount);
   for (let i = 0, factor = 0; i < frequencies.length; i++) {
     const at = 2 * frequencies[i]!;
-    for (let part = 0; part < 2 * layerCount; part++) noise[part] = randomNormal(random);
+    fillNormal(noise, random);
     for (let layer = 0; layer < layerCount; layer++) {
       let real = 0;
       let imaginary = 0;
@@ -61,6 +61,19 @@ function drawNoise({ frequencies, factors, layerCount }: FieldRecipe, planes: re
       planes[layer]![at] = real;
       planes[layer]![at + 1] = imaginary;
     }
+  }
+}
+
+/** Standard normal deviates in pairs by the polar method (Marsaglia & Bray 1964); the length is even. */
+function fillNormal(out: Float64Array, random: Random): void {
+  for (let at = 0; at < out.length; ) {
+    const u = 2 * random() - 1;
+    const v = 2 * random() - 1;
+    const q = u * u + v * v;
+    if (q >= 1 || q === 0) continue;
+    const stretch = Math.sqrt((-2 * Math.log(q)) / q);
+    out[at++] = u * stretch;
+    out[at++] = v * stretch;
   }
 }
 

@@ -1,8 +1,9 @@
 /**
- * One k-means run from given centres to a fixed point: Lloyd's iteration (Lloyd 1982) with the triangle-inequality
- * bounds of Hamerly 2010 ("Making k-means even faster"): a point whose bound on its own centre is below half the gap to
- * the next centre, or below its bound on all others, cannot change and costs no distance. Same result as plain Lloyd.
- * A zone left without points takes the point farthest from its centre (common practice).
+ * One k-means run from given centres to a fixed point: Lloyd's iteration (Lloyd 1982) with a triangle-inequality bound
+ * after Hamerly 2010 ("Making k-means even faster"): the distance to the next centre minus that to the own cannot shrink by
+ * more than the centres moved, so a point with enough of it left cannot change and costs no distance. His two bounds are
+ * kept as their difference: one number to read and write a point. Same result as plain Lloyd. A zone left without points
+ * takes the point farthest from its centre (common practice).
  */
 
 import type { PointTable } from './kmeansPoints.ts';
@@ -39,9 +40,8 @@ interface LloydState {
   readonly k: number;
   readonly centres: Float64Array;
   readonly labels: Uint8Array;
-  /** Bound from above on the distance to the own centre, from below on the distance to any other. */
-  readonly upper: Float64Array;
-  readonly lower: Float64Array;
+  /** Bound from below on how much farther the next centre is than the own. */
+  readonly lead: Float64Array;
   readonly sums: Float64Array;
   readonly sizes: Float64Array;
   /** How far each centre moved last. */
@@ -54,8 +54,7 @@ function firstState(points: PointTable, start: Float64Array): LloydState {
     k,
     centres: start.slice(),
     labels: new Uint8Array(points.count),
-    upper: new Float64Array(points.count),
-    lower: new Float64Array(points.count),
+    lead: new Float64Array(points.count),
     sums: new Float64Array(start.length),
     sizes: new Float64Array(k),
     moved: new Float64Array(k),
@@ -93,29 +92,28 @@ function moveCentres(points: PointTable, state: LloydState): boolean {
   return repaired;
 }
 
-/** Loosens the bounds by the centres' moves, then looks again only at points whose bounds overlap. Returns changes. */
+/** Takes the centres' moves off each point's lead and looks again only where none is left. Returns changes. */
 function reassign(points: PointTable, state: LloydState): number {
   const { values, count, dimensions } = points;
-  const { centres, labels, upper, lower, moved } = state;
+  const { labels, lead, centres } = state;
+  const loss = possibleLosses(state.moved);
   const halfGap = halfGaps(state, dimensions);
-  const moves = largestMoves(moved);
   let changes = 0;
   for (let point = 0; point < count; point++) {
     const zone = labels[point]!;
-    const above = upper[point]! + moved[zone]!;
-    const below = lower[point]! - (zone === moves.zone ? moves.second : moves.largest);
-    upper[point] = above;
-    lower[point] = below;
-    const safe = below > halfGap[zone]! ? below : halfGap[zone]!;
-    if (above <= safe) continue;
+    const left = lead[point]! - loss[zone]!;
+    lead[point] = left;
+    if (left > 0) continue;
     let squared = 0;
     for (let f = 0, p = point * dimensions, c = zone * dimensions; f < dimensions; f++, p++, c++) {
       const difference = values[p]! - centres[c]!;
       squared += difference * difference;
     }
-    const exact = Math.sqrt(squared);
-    upper[point] = exact;
-    if (exact <= safe) continue;
+    // Within half the way to the nearest other centre no other can be nearer.
+    if (squared < halfGap[zone]! * halfGap[zone]!) {
+      lead[point] = 2 * (halfGap[zone]! - Math.sqrt(squared));
+      continue;
+    }
     findNearest(points, state, point);
     if (labels[point] === zone) continue;
     account(points, state, point, zone, -1);
@@ -125,7 +123,37 @@ function reassign(points: PointTable, state: LloydState): number {
   return changes;
 }
 
-function findNearest({ values, dimensions }: PointTable, { k, centres, labels, upper, lower }: LloydState, point: number): void {
+/** Half the distance from each centre to the nearest other. */
+function halfGaps({ k, centres }: LloydState, dimensions: number): Float64Array {
+  const halfGap = new Float64Array(k).fill(Infinity);
+  for (let a = 0; a < k; a++) {
+    for (let b = a + 1; b < k; b++) {
+      let squared = 0;
+      for (let f = 0; f < dimensions; f++) squared += (centres[a * dimensions + f]! - centres[b * dimensions + f]!) ** 2;
+      const half = Math.sqrt(squared) / 2;
+      halfGap[a] = Math.min(halfGap[a]!, half);
+      halfGap[b] = Math.min(halfGap[b]!, half);
+    }
+  }
+  return halfGap;
+}
+
+/** Per zone: its own move plus the largest move of any other. */
+function possibleLosses(moved: Float64Array): Float64Array {
+  let largest = 0;
+  let second = 0;
+  let at = -1;
+  for (let zone = 0; zone < moved.length; zone++) {
+    if (moved[zone]! > largest) {
+      second = largest;
+      largest = moved[zone]!;
+      at = zone;
+    } else if (moved[zone]! > second) second = moved[zone]!;
+  }
+  return moved.map((move, zone) => move + (zone === at ? second : largest));
+}
+
+function findNearest({ values, dimensions }: PointTable, { k, centres, labels, lead }: LloydState, point: number): void {
   const base = point * dimensions;
   let nearest = 0;
   let best = Infinity;
@@ -143,8 +171,7 @@ function findNearest({ values, dimensions }: PointTable, { k, centres, labels, u
     } else if (squared < next) next = squared;
   }
   labels[point] = nearest;
-  upper[point] = Math.sqrt(best);
-  lower[point] = Math.sqrt(next);
+  lead[point] = Math.sqrt(next) - Math.sqrt(best);
 }
 
 function account({ values, dimensions }: PointTable, { sums, sizes }: LloydState, point: number, zone: number, sign: 1 | -1): void {
@@ -152,35 +179,6 @@ function account({ values, dimensions }: PointTable, { sums, sizes }: LloydState
   for (let f = 0; f < dimensions; f++) {
     sums[zone * dimensions + f] = sums[zone * dimensions + f]! + sign * values[point * dimensions + f]!;
   }
-}
-
-/** Half the distance from each centre to the nearest other: a point closer than that to its own cannot change. */
-function halfGaps({ k, centres }: LloydState, dimensions: number): Float64Array {
-  const halfGap = new Float64Array(k).fill(Infinity);
-  for (let a = 0; a < k; a++) {
-    for (let b = a + 1; b < k; b++) {
-      let squared = 0;
-      for (let f = 0; f < dimensions; f++) squared += (centres[a * dimensions + f]! - centres[b * dimensions + f]!) ** 2;
-      const half = Math.sqrt(squared) / 2;
-      halfGap[a] = Math.min(halfGap[a]!, half);
-      halfGap[b] = Math.min(halfGap[b]!, half);
-    }
-  }
-  return halfGap;
-}
-
-function largestMoves(moved: Float64Array): { largest: number; second: number; zone: number } {
-  let largest = 0;
-  let second = 0;
-  let zone = -1;
-  for (let z = 0; z < moved.length; z++) {
-    if (moved[z]! > largest) {
-      second = largest;
-      largest = moved[z]!;
-      zone = z;
-    } else if (moved[z]! > second) second = moved[z]!;
-  }
-  return { largest, second, zone };
 }
 
 /** False when every point sits on its centre already: fewer different points than zones. */

@@ -63,8 +63,11 @@ export function majorityFiltered(labels: Labels, cols: number): Labels {
   const votes = new Int32Array(256);
   for (let row = 0; row < rows; row++) {
     for (let col = 0; col < cols; col++) {
-      const own = labels[row * cols + col]!;
+      const at = row * cols + col;
+      const own = labels[at]!;
       if (own === 0) continue;
+      // With its four neighbours alike a cell has five of nine votes.
+      if (col > 0 && col < cols - 1 && labels[at - 1] === own && labels[at + 1] === own && labels[at - cols] === own && labels[at + cols] === own) continue;
       const north = Math.max(0, row - 1) * cols;
       const south = Math.min(rows - 1, row + 1) * cols;
       const west = Math.max(0, col - 1);
@@ -81,7 +84,7 @@ export function majorityFiltered(labels: Labels, cols: number): Labels {
           else if (count === votes[best]!) tied = true;
         }
       }
-      out[row * cols + col] = tied ? own : best;
+      out[at] = tied ? own : best;
       for (let from = north; from <= south; from += cols) for (let cell = from + west; cell <= from + east; cell++) votes[labels[cell]!] = 0;
     }
   }

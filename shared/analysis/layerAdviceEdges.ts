@@ -1,7 +1,7 @@
 /**
  * Do the edges of a soil map or terrain layer lie where the measured layers change? Boundary overlap (Fortin, Drapeau &
- * Jacquez 1996; Jacquez et al. 2000, from memory): rank correlation of the two edge strengths, against what it is between
- * each layer and random fields that vary like the other one, because smooth fields share edges by chance more often than
+ * Jacquez 1996; Jacquez et al. 2000, from memory): rank correlation of the two edge strengths, against what it is between the
+ * context layer and random fields that vary like the evidence, because smooth fields share edges by chance more often than
  * textbook p-values say (Clifford, Richardson & Hémon 1989). In: fields on one plane. Out: correlation and its excess.
  */
 
@@ -12,8 +12,8 @@ import type { Random } from './random.ts';
 import { gradientSquares, maskedSmoother } from './verdictCalmCells.ts';
 
 const EDGE_SMOOTHING_M = 4;
-/** Random fields for each of the two sides. */
-const REFERENCES = 10;
+/** Random fields in place of the evidence. */
+const REFERENCES = 16;
 
 export interface EdgeCoincidence {
   readonly correlation: number;
@@ -34,15 +34,13 @@ export interface EdgePlane {
 export function edgeComparison({ plane, cellSizeM }: EdgePlane, evidence: readonly Float64Array[], random: Random): (context: readonly Float64Array[]) => EdgeCoincidence {
   const ranksOf = edgeRanks(plane, cellSizeM);
   const evidenceRanks = ranksOf(evidence);
-  const evidenceReferences = likeLayers(plane, evidence, random).map(ranksOf);
+  const references = likeLayers(plane, evidence, random).map(ranksOf);
   return (context) => {
     const contextRanks = ranksOf(context);
-    // Random fields cannot stand in for a map of classes; there the evidence's own random fields are the comparison.
-    const contextReferences = context.length > 1 ? [] : likeLayers(plane, context, random).map(ranksOf);
-    const references = [...evidenceReferences.map((ranks) => correlation(ranks, contextRanks)), ...contextReferences.map((ranks) => correlation(evidenceRanks, ranks))];
     const own = correlation(evidenceRanks, contextRanks);
-    const mean = references.reduce((sum, value) => sum + value, 0) / references.length;
-    const sd = Math.sqrt(references.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (references.length - 1));
+    const byChance = references.map((ranks) => correlation(ranks, contextRanks));
+    const mean = byChance.reduce((sum, value) => sum + value, 0) / byChance.length;
+    const sd = Math.sqrt(byChance.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (byChance.length - 1));
     return { correlation: own, excess: own - mean, deviations: (own - mean) / sd };
   };
 }

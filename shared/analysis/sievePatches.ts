@@ -25,6 +25,8 @@ export function findPatches(labels: Labels, cols: number, connectivity: Connecti
   const sizes: number[] = [];
   const patchLabels: number[] = [];
   const stack = new Int32Array(labels.length);
+  const right = Int32Array.from(STEPS[connectivity], ([col]) => col);
+  const offset = Int32Array.from(STEPS[connectivity], ([col, row]) => col + row * cols);
   for (let first = 0; first < labels.length; first++) {
     const label = labels[first]!;
     if (label === 0 || patchOf[first] !== -1) continue;
@@ -37,9 +39,10 @@ export function findPatches(labels: Labels, cols: number, connectivity: Connecti
       const cell = stack[--depth]!;
       size++;
       const col = cell % cols;
-      for (const [right, down] of STEPS[connectivity]) {
-        if (col + right < 0 || col + right >= cols) continue;
-        const next = cell + right + down * cols;
+      for (let step = 0; step < right.length; step++) {
+        const nextCol = col + right[step]!;
+        if (nextCol < 0 || nextCol >= cols) continue;
+        const next = cell + offset[step]!;
         if (labels[next] !== label || patchOf[next] !== -1) continue;
         patchOf[next] = patch;
         stack[depth++] = next;

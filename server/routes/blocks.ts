@@ -1,5 +1,5 @@
-import { Router, type Response } from 'express';
-import { blockChange, newBlock, outlineToCheck, type ChangedBlock } from '../../shared/contracts/blocks.ts';
+import { Router } from 'express';
+import { blockChange, newBlock, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { changeCensus } from '../services/blocks/census.ts';
@@ -7,7 +7,7 @@ import { changeBlock, createBlock, previewOutline, retireBlock } from '../servic
 import { listBlocks } from '../services/blocks/list.ts';
 import { listRows, renumber } from '../services/blocks/rows.ts';
 import { viewBlock } from '../services/blocks/view.ts';
-import { etagOf, versionMatched } from './etag.ts';
+import { sendVersioned, versionMatched } from './etag.ts';
 
 /** Blocks with their rows and vines. */
 export function blockRoutes(): Router {
@@ -19,7 +19,7 @@ export function blockRoutes(): Router {
   });
 
   router.post('/blocks', allow('blocks.edit'), async (request, response) => {
-    answer(response.status(201), await createBlock(accessOf(request), newBlock.parse(request.body), new Date()));
+    sendVersioned(response.status(201), await createBlock(accessOf(request), newBlock.parse(request.body), new Date()));
   });
 
   router.post('/blocks/check', allow('blocks.edit', 'propose'), async (request, response) => {
@@ -28,12 +28,12 @@ export function blockRoutes(): Router {
 
   router.get('/blocks/:blockId', allow('estate.see', 'read'), async (request, response) => {
     const block = await viewBlock(accessOf(request), idParam(request, 'blockId'), { now: new Date() });
-    response.set('etag', etagOf(block.version)).json(block);
+    sendVersioned(response, block);
   });
 
   router.patch('/blocks/:blockId', allow('blocks.edit'), async (request, response) => {
     const made = { version: versionMatched(request), now: new Date() };
-    answer(response, await changeBlock(accessOf(request), idParam(request, 'blockId'), blockChange.parse(request.body), made));
+    sendVersioned(response, await changeBlock(accessOf(request), idParam(request, 'blockId'), blockChange.parse(request.body), made));
   });
 
   router.delete('/blocks/:blockId', allow('blocks.edit'), async (request, response) => {
@@ -43,13 +43,13 @@ export function blockRoutes(): Router {
 
   router.get('/blocks/:blockId/rows', allow('estate.see', 'read'), async (request, response) => {
     const rows = await listRows(accessOf(request), idParam(request, 'blockId'));
-    response.set('etag', etagOf(rows.version)).json(rows);
+    sendVersioned(response, rows);
   });
 
   router.put('/blocks/:blockId/rows', allow('rows.renumber'), async (request, response) => {
     const made = { version: versionMatched(request), now: new Date() };
     const rows = await renumber(accessOf(request), idParam(request, 'blockId'), numberingChange.parse(request.body), made);
-    response.set('etag', etagOf(rows.version)).json(rows);
+    sendVersioned(response, rows);
   });
 
   router.put('/blocks/:blockId/vines', allow('census.edit', 'propose'), async (request, response) => {
@@ -57,8 +57,4 @@ export function blockRoutes(): Router {
   });
 
   return router;
-}
-
-function answer(response: Response, changed: ChangedBlock): void {
-  response.set('etag', etagOf(changed.version)).json(changed);
 }

@@ -4,9 +4,8 @@ import type { BlockLayerView } from '../../shared/contracts/layers.ts';
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { layerPicture, type LayerPicture } from '../lib/layerPicture.ts';
-import { countedRows, laidRows, type CountedRow } from '../lib/stripRows.ts';
+import { countedRows, type CountedRow } from '../lib/stripRows.ts';
 import { useAsk, type Ask } from './useAsk.ts';
-import { cornersOf, type RowCorner } from './useRowPreview.ts';
 
 interface Door {
   block: () => Promise<BlockView>;
@@ -23,7 +22,6 @@ export interface BlockBook {
   layers: ShallowRef<readonly BlockLayerView[]>;
   strip: ComputedRef<CountedRow[]>;
   zones: ComputedRef<NonNullable<BlockLine['zoning']>['zones']>;
-  corners: ComputedRef<RowCorner[]>;
   /** The layer that lies on the map, and its cells once they are here. */
   shownLayer: ShallowRef<BlockLayerView | null>;
   picture: ShallowRef<LayerPicture | null>;
@@ -65,7 +63,6 @@ export function useBlockBook(door: Door): BlockBook {
     layers,
     zones,
     strip: computed(() => (block.value && rows.value ? countedRows(block.value, rows.value, zones.value) : [])),
-    corners: computed(() => (block.value && rows.value && rows.value.items.length > 0 ? cornersOf(laidRows(block.value, rows.value)) : [])),
     shownLayer,
     picture,
     load: async () => void (await loading.run()),

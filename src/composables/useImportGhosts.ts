@@ -1,5 +1,6 @@
 import { computed, type ComputedRef } from 'vue';
 import type { ImportView } from '../../shared/contracts/imports.ts';
+import { extentOf, type Extent } from '../lib/mapPlaces.ts';
 
 /** A possible placing of a file as the map draws it. */
 export interface Ghost {
@@ -20,8 +21,23 @@ export function useImportGhosts(line: () => ImportView | null, placing: () => st
     if (question) {
       return question.choices.flatMap((choice, at): Ghost[] => (choice.outlineLonLat === null ? [] : [{ id: String(choice.value), letter: letter(at), geometry: { type: 'Polygon', coordinates: [choice.outlineLonLat] }, chosen: String(choice.value) === placing() }]));
     }
-    if (open.outlines.length > 0) return open.outlines.map((outline) => ({ id: String(outline.index), letter: String(outline.index + 1), geometry: outline.boundary as Ghost['geometry'], chosen: outline.problem === null }));
+    if (open.outlines.length > 0) return open.outlines.map((outline) => ({ id: String(outline.index), letter: String(outline.index + 1), geometry: (outline.repair?.boundary ?? outline.boundary) as Ghost['geometry'], chosen: outline.problem === null }));
     const ring = open.understood?.outlineLonLat;
     return ring ? [{ id: open.id, letter: letter(0), geometry: { type: 'Polygon', coordinates: [ring] }, chosen: true }] : [];
   });
+}
+
+type Area = Ghost['geometry'];
+
+/** What the map shows: the blocks, and the ghosts that lie no farther from them than the estate is wide. One far away is only a flag. */
+export function extentInSight(blocks: readonly Area[], ghosts: readonly Ghost[]): Extent | null {
+  const estate = extentOf(blocks);
+  if (estate === null) return extentOf(ghosts.map(({ geometry }) => geometry));
+  const [west, south, east, north] = estate;
+  const [reachLon, reachLat] = [east - west, north - south];
+  const isNear = ({ geometry }: Ghost) => {
+    const [ghostWest, ghostSouth, ghostEast, ghostNorth] = extentOf([geometry])!;
+    return ghostWest >= west - reachLon && ghostEast <= east + reachLon && ghostSouth >= south - reachLat && ghostNorth <= north + reachLat;
+  };
+  return extentOf([...blocks, ...ghosts.filter(isNear).map(({ geometry }) => geometry)]);
 }

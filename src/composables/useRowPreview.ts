@@ -21,13 +21,10 @@ export interface PlantingDraft {
   readonly endPostColour: string;
 }
 
-export type Wind = 'n' | 'ne' | 'e' | 'se' | 's' | 'sw' | 'w' | 'nw';
-
 /** One of the four outermost row ends, from which rows and vines may be counted. */
 export interface RowCorner {
   readonly id: `${'low' | 'high'}-${'start' | 'end'}`;
   readonly lonLat: readonly [number, number];
-  readonly wind: Wind;
 }
 
 export interface RowPreview {
@@ -82,22 +79,15 @@ function stripOf(built: BlockRows, outline: Outline, draft: PlantingDraft): Coun
   return countedRows(block, { items, numbering: { rowOneSide: draft.rowOneSide, vineOneEnd: draft.vineOneEnd, firstRowLabel } });
 }
 
-const winds: readonly Wind[] = ['n', 'ne', 'e', 'se', 's', 'sw', 'w', 'nw'];
-
-/** The four outermost row ends, named by the wind they lie in. */
-export function cornersOf({ rows }: BlockRows): RowCorner[] {
+/** The four outermost row ends. */
+function cornersOf({ rows }: BlockRows): RowCorner[] {
   const [low, high] = [rows[0], rows.at(-1)];
   if (!low || !high) return [];
-  const ends = [
-    { id: 'low-start' as const, piece: low.pieces[0]!, end: 'from' as const },
-    { id: 'low-end' as const, piece: low.pieces.at(-1)!, end: 'to' as const },
-    { id: 'high-start' as const, piece: high.pieces[0]!, end: 'from' as const },
-    { id: 'high-end' as const, piece: high.pieces.at(-1)!, end: 'to' as const },
+  const at = ([lon, lat]: readonly [number, number]) => [lon, lat] as const;
+  return [
+    { id: 'low-start', lonLat: at(low.pieces[0]!.from) },
+    { id: 'low-end', lonLat: at(low.pieces.at(-1)!.to) },
+    { id: 'high-start', lonLat: at(high.pieces[0]!.from) },
+    { id: 'high-end', lonLat: at(high.pieces.at(-1)!.to) },
   ];
-  const middle = (axis: 0 | 1) => ends.reduce((sum, { piece, end }) => sum + piece[`${end}XY`][axis], 0) / ends.length;
-  const [x, y] = [middle(0), middle(1)];
-  return ends.map(({ id, piece, end }) => {
-    const degrees = (Math.atan2(piece[`${end}XY`][0] - x, piece[`${end}XY`][1] - y) * 180) / Math.PI;
-    return { id, lonLat: [piece[end][0], piece[end][1]], wind: winds[Math.round(((degrees + 360) % 360) / 45) % 8]! };
-  });
 }

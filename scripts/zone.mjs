@@ -1,19 +1,20 @@
 // npm run zone -- --block … --layer …: zones of one block from files.
 // The program is bundled into one folder, because finding some two hundred modules takes longer than loading them. It is
 // bundled again when a source is newer.
-import { existsSync, renameSync, rmSync, statSync } from 'node:fs';
+import { existsSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
+import path from 'node:path';
 import { inCheckout, root } from './checkout.mjs';
-import { filesBelow } from './filesBelow.mjs';
 
 const folder = inCheckout('dist/zone');
 const program = inCheckout('dist/zone/zone.mjs');
-const sources = ['server', 'shared', 'package-lock.json'];
+const sourceList = inCheckout('dist/zone/sources.json');
 
-/** By time, which costs a few milliseconds. */
+/** By the times of the files that went into it, which costs a few milliseconds. */
 function isBuilt() {
-  if (!existsSync(program)) return false;
+  if (!existsSync(program) || !existsSync(sourceList)) return false;
   const built = statSync(program).mtimeMs;
-  return filesBelow(root, sources).every((file) => statSync(inCheckout(file)).mtimeMs <= built);
+  const sources = JSON.parse(readFileSync(sourceList, 'utf8'));
+  return sources.every((file) => existsSync(inCheckout(file)) && statSync(inCheckout(file)).mtimeMs <= built);
 }
 
 async function buildProgram() {
@@ -24,13 +25,27 @@ async function buildProgram() {
     say('Building the zoning program …');
     const { build } = await import('vite');
     const draft = `${folder}.draft`;
-    await build({
+    const { output } = await build({
       configFile: false,
       root,
       logLevel: 'warn',
-      build: { ssr: 'server/cli/zone.ts', outDir: draft, emptyOutDir: true, copyPublicDir: false, target: 'node20', minify: true, rollupOptions: { output: { entryFileNames: 'zone.mjs', chunkFileNames: '[name].mjs' } } },
+      build: {
+        ssr: true,
+        outDir: draft,
+        emptyOutDir: true,
+        copyPublicDir: false,
+        target: 'node20',
+        minify: true,
+        rollupOptions: {
+          input: { zone: 'server/cli/zone.ts', filesThreadEntry: 'server/workers/filesThreadEntry.ts' },
+          output: { entryFileNames: '[name].mjs', chunkFileNames: '[name].mjs' },
+        },
+      },
       ssr: { noExternal: true },
     });
+    const own = output.flatMap(({ moduleIds = [] }) => moduleIds).filter((id) => id.startsWith(root) && !id.includes('node_modules'));
+    const sources = [...new Set(own)].map((id) => path.relative(root, id)).sort();
+    writeFileSync(path.join(draft, 'sources.json'), JSON.stringify(['package-lock.json', ...sources]));
     rmSync(folder, { recursive: true, force: true });
     renameSync(draft, folder);
   });

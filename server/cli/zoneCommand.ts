@@ -2,11 +2,11 @@ import { existsSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs
 import { dirname, resolve } from 'node:path';
 import { AnalysisError } from '../../shared/analysis/analysisError.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
-import type { ZoningReadings } from '../../shared/analysis/zoningTypes.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
+import type { FilesThread } from '../workers/filesThread.ts';
 import { BadInput, readArguments, type ZoneArguments } from './zoneArguments.ts';
-import { readBlock, type Block } from './zoneFiles.ts';
-import { readLayer, type ReadLayer } from './zoneLayers.ts';
+import { readBlock } from './zoneFiles.ts';
+import { openBeside, readInputs } from './zoneInputs.ts';
 import { zonesGeoJson, zoningReport } from './zoneReport.ts';
 
 /**
@@ -34,16 +34,20 @@ export async function runZoneCommand(args: readonly string[]): Promise<CommandOu
 async function run(args: readonly string[], stopwatch: Stopwatch): Promise<string> {
   const asked = readArguments(args);
   for (const path of [asked.outPath, asked.reportPath]) requireFolder(path);
+  const beside = openBeside(asked);
+  try {
+    return await zoneFiles(asked, beside, stopwatch);
+  } finally {
+    beside?.close();
+  }
+}
+
+async function zoneFiles(asked: ZoneArguments, beside: FilesThread | null, stopwatch: Stopwatch): Promise<string> {
   stopwatch.lap('start');
   const block = await readBlock(asked.blockPath, asked.cellSizeM);
   stopwatch.lap('block');
-  const layers: ReadLayer[] = [];
-  for (const argument of asked.layers) {
-    layers.push(await readLayer(block, argument, asked.layerWeights));
-    stopwatch.lap(`layer ${argument.id}`);
-  }
-  const readings = await readingsOf(block, asked);
-  stopwatch.lap('readings');
+  const { layers, readings, secondsHere, secondsBeside } = await readInputs(block, asked, beside);
+  stopwatch.split(secondsHere, 'waiting for files');
   const { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed } = asked;
   const options = { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed };
   const result = makeZoning({ grid: block.grid, layers: layers.map(({ layer }) => layer), options, readings }, (stage) => stopwatch.lap(stage));
@@ -51,15 +55,9 @@ async function run(args: readonly string[], stopwatch: Stopwatch): Promise<strin
   const geoJson = JSON.stringify(zonesGeoJson(chosen.zones));
   stopwatch.lap('write');
   const notes = Object.fromEntries(layers.map(({ layer, notes: own }) => [layer.id, own]));
-  const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
+  const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), secondsBeside, peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
   writeTogether([[asked.outPath, geoJson], ...(asked.reportPath === null ? [] : [[asked.reportPath, JSON.stringify(report, null, 1)] as [string, string]])]);
   return `${chosen.zones.length} ${chosen.zones.length === 1 ? 'zone' : 'zones'} on ${report.grid.areaHa.toFixed(2)} ha; verdict ${result.verdict.verdict}, advised ${result.advisedK}. Written: ${asked.outPath}`;
-}
-
-async function readingsOf(block: Block, { readingsPath }: ZoneArguments): Promise<ZoningReadings[]> {
-  if (readingsPath === null) return [];
-  const { readReadings } = await import('./zoneReadings.ts');
-  return readReadings(block, readingsPath);
 }
 
 function requireFolder(path: string | null): void {
@@ -83,6 +81,8 @@ function writeTogether(files: readonly (readonly [path: string, text: string])[]
 
 interface Stopwatch {
   lap(stage: string): void;
+  /** A lap whose parts were timed elsewhere; what they leave over goes to `rest`. */
+  split(parts: Readonly<Record<string, number>>, rest: string): void;
   seconds(): Record<string, number>;
 }
 
@@ -94,6 +94,12 @@ function createStopwatch(): Stopwatch {
     lap(stage: string) {
       const now = performance.now();
       laps[stage] = (laps[stage] ?? 0) + (now - last) / 1000;
+      last = now;
+    },
+    split(parts: Readonly<Record<string, number>>, rest: string) {
+      const now = performance.now();
+      const known = Object.values(parts).reduce((sum, seconds) => sum + seconds, 0);
+      Object.assign(laps, parts, { [rest]: Math.max(0, (now - last) / 1000 - known) });
       last = now;
     },
     seconds: () => ({ ...laps }),

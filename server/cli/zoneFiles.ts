@@ -58,6 +58,8 @@ export function requireAnswered(fileName: string, questions: readonly ImportQues
   throw new BadInput(`${fileName}: ${question.text}${choices === '' ? '' : ` Choices: ${choices}.`}${how === undefined ? ' Put it in order and export it again.' : ` Answer with ${how}.`}`);
 }
 
+const PLAIN_BYTES = 4e6;
+
 export interface Block {
   readonly grid: Grid;
   readonly middleLonLat: LonLat;
@@ -66,6 +68,32 @@ export interface Block {
 /** The block's grid from the areas in a file; several areas are parts of one block. */
 export async function readBlock(path: string, cellSizeM: number): Promise<Block> {
   requireFile(path, '--block');
+  const areas = plainAreas(path) ?? (await areasByReader(path));
+  const { polygons } = readOutline({ type: 'MultiPolygon', coordinates: areas as unknown as MultiPolygonLonLat });
+  return { grid: defineGrid(polygons, cellSizeM), middleLonLat: polygons[0]![0]![0]! };
+}
+
+/** Areas of a plain GeoJSON file, which needs no reader; null for anything else, which then gets the full treatment. */
+function plainAreas(path: string): PolygonLonLat[] | null {
+  if (!/\.(geo)?json$/i.test(path) || statSync(path).size > PLAIN_BYTES) return null;
+  try {
+    const json = JSON.parse(readFileSync(path, 'utf8')) as { crs?: unknown; features?: { geometry: unknown }[]; geometry?: unknown };
+    if (json.crs !== undefined) return null;
+    const geometries = (json.features ?? [json]).map((each) => ('geometry' in each ? each.geometry : each) as { type?: string; coordinates?: unknown } | null);
+    const areas = geometries.flatMap((geometry) => (geometry?.type === 'Polygon' ? [geometry.coordinates] : geometry?.type === 'MultiPolygon' ? (geometry.coordinates as unknown[]) : [null]));
+    return areas.length > 0 && areas.every(isArea) ? (areas as PolygonLonLat[]) : null;
+  } catch {
+    return null;
+  }
+}
+
+/** Rings of positions in degrees; an outline that is wrong in any other way is for the reader to explain. */
+function isArea(area: unknown): boolean {
+  const isPosition = (position: unknown) => Array.isArray(position) && Math.abs(position[0] as number) <= 180 && Math.abs(position[1] as number) <= 90;
+  return Array.isArray(area) && area.length > 0 && area.every((ring) => Array.isArray(ring) && ring.length >= 4 && ring.every(isPosition));
+}
+
+async function areasByReader(path: string): Promise<PolygonLonLat[]> {
   const { readVectors } = await import('../importers/vector/readVectors.ts');
   const options = readOptionsFor(path, {}, null);
   const { layers, questions, repairs } = await readVectors(path, options);
@@ -77,6 +105,5 @@ export async function readBlock(path: string, cellSizeM: number): Promise<Block>
     return geometry?.type === 'MultiPolygon' ? (geometry.coordinates as unknown as PolygonLonLat[]) : [];
   });
   if (areas.length === 0) throw new BadInput(`${options.fileName}: it holds no area; draw the block as a polygon.`);
-  const { polygons } = readOutline({ type: 'MultiPolygon', coordinates: areas as unknown as MultiPolygonLonLat });
-  return { grid: defineGrid(polygons, cellSizeM), middleLonLat: polygons[0]![0]![0]! };
+  return areas;
 }

@@ -27,10 +27,12 @@ export interface ReportInput {
   readonly notes: Readonly<Record<string, readonly string[]>>;
   /** Seconds by stage in the order they were done. */
   readonly secondsPerStage: Readonly<Record<string, number>>;
+  /** Files that a second thread read at the same time. */
+  readonly secondsBeside: Readonly<Record<string, number>>;
   readonly peakMemoryMb: number;
 }
 
-export function zoningReport({ grid, result, notes, secondsPerStage, peakMemoryMb }: ReportInput) {
+export function zoningReport({ grid, result, notes, secondsPerStage, secondsBeside, peakMemoryMb }: ReportInput) {
   const chosen = result.candidates[result.chosenK - 1]!;
   const areaM2 = polygonsArea(grid.outlineXY);
   return {
@@ -53,6 +55,7 @@ export function zoningReport({ grid, result, notes, secondsPerStage, peakMemoryM
     warnings: result.warnings,
     notes,
     secondsPerStage,
+    secondsBeside,
     seconds: Object.values(secondsPerStage).reduce((sum, seconds) => sum + seconds, 0),
     peakMemoryMb,
   };

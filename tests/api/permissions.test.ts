@@ -1,6 +1,8 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { may, type Permission, type Reach } from '../../shared/catalog/permissions.ts';
 import { roles, type Role } from '../../shared/catalog/roles.ts';
+import { routesOf } from './support/routesOf.ts';
+import { layOneOfEach, tableOf } from './support/strangers.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
 const nobody = '00000000-0000-4000-8000-000000000000';
@@ -27,7 +29,30 @@ const doors: Door[] = [
   door('get', '/audit', 'audit.see', 'read'),
   door('get', '/mail', 'mail.see'),
   door('get', `/jobs/${nobody}`, 'estate.see', 'read'),
+  door('get', `/jobs/${nobody}/events`, 'estate.see', 'read'),
   door('delete', `/jobs/${nobody}`, 'zoning.run', 'propose'),
+  door('get', '/blocks', 'estate.see', 'read'),
+  door('post', '/blocks', 'blocks.edit'),
+  door('post', '/blocks/check', 'blocks.edit', 'propose'),
+  door('get', `/blocks/${nobody}`, 'estate.see', 'read'),
+  door('patch', `/blocks/${nobody}`, 'blocks.edit'),
+  door('delete', `/blocks/${nobody}`, 'blocks.edit'),
+  door('get', `/blocks/${nobody}/rows`, 'estate.see', 'read'),
+  door('put', `/blocks/${nobody}/rows`, 'rows.renumber'),
+  door('put', `/blocks/${nobody}/vines`, 'census.edit', 'propose'),
+  door('get', '/imports', 'layers.import', 'read'),
+  door('post', '/imports', 'layers.import'),
+  door('get', `/imports/${nobody}`, 'layers.import', 'read'),
+  door('patch', `/imports/${nobody}`, 'layers.import'),
+  door('post', `/imports/${nobody}/blocks`, 'blocks.edit'),
+  door('delete', `/imports/${nobody}`, 'layers.import'),
+  door('get', `/files/${nobody}/download`, 'layers.import', 'read'),
+  door('get', `/blocks/${nobody}/layers`, 'estate.see', 'read'),
+  door('get', '/relief', 'estate.see', 'read'),
+  door('get', `/layers/${nobody}/cells?block=${nobody}`, 'estate.see', 'read'),
+  door('patch', `/layers/${nobody}`, 'layers.import'),
+  door('post', `/layers/${nobody}/override`, 'layers.override'),
+  door('delete', `/layers/${nobody}`, 'layers.import'),
   door('get', '/measures', 'estate.see', 'read'),
   door('post', '/measures', 'plans.margins'),
   door('patch', `/measures/${nobody}`, 'plans.margins'),
@@ -114,10 +139,64 @@ describe.each(doors)('$method $path asks for $action ($atLeast)', ({ method, pat
 });
 
 describe('doors of another estate', () => {
+  let other = '';
+  beforeAll(async () => {
+    other = (await app.addEstate()).estateId;
+  });
+
   it.each(doors)('$method $path is not found', async ({ method, path }) => {
-    const other = await app.addEstate();
     const agent = agents.get('owner')!;
-    const url = `/api/estates/${other.estateId}${path}`;
+    const url = `/api/estates/${other}${path}`;
     expect((method === 'get' ? await agent.get(url) : await agent[method](url, {})).status).toBe(404);
   });
 });
+
+describe('things of another estate', () => {
+  const named = doors.filter(({ path }) => path.includes(nobody));
+  let strange: Map<string, string>;
+  beforeAll(async () => {
+    const other = await app.addEstate();
+    strange = await layOneOfEach(app.knex, other.estateId, other.ownerId);
+  });
+
+  it.each(named)('$method $path answers for them as for an id that does not exist', async ({ method, path }) => {
+    const agent = agents.get('owner')!;
+    const ask = (address: string) => (method === 'get' ? agent.get(`/api/estates/${estateId}${address}`) : agent[method](`/api/estates/${estateId}${address}`, {}));
+    const table = tableOf[parameterOf(method, path)]!;
+    const [theirs, none] = [await ask(path.replace(nobody, strange.get(table)!)), await ask(path)];
+    expect({ status: theirs.status, body: theirs.body as unknown }).toEqual({ status: none.status, body: none.body as unknown });
+    expect(theirs.status).not.toBe(500);
+  });
+});
+
+describe('the list of doors', () => {
+  it('has a row for every route of the estate, and no row without a route', () => {
+    const served = estateRoutes();
+    expect(served.filter((route) => !doors.some((one) => opens(one, route))).map(({ method, path }) => `${method} ${path}`)).toEqual([]);
+    expect(doors.filter((one) => !served.some((route) => opens(one, route))).map(({ method, path }) => `${method} ${path}`)).toEqual([]);
+  });
+
+  it('names for every parameter the table that holds the thing', () => {
+    const parameters = estateRoutes().flatMap(({ path }) => [...path.matchAll(/:(\w+)/g)].map((match) => match[1]!));
+    expect([...new Set(parameters)].filter((name) => !(name in tableOf))).toEqual([]);
+  });
+
+  it.each(doors.filter(({ method }) => method !== 'get'))('$method $path refuses a write that lacks the token of the session', async ({ method, path }) => {
+    const answer = await agents.get('owner')!.write(method as 'post', `/api/estates/${estateId}${path}`).set('x-csrf-token', 'made up').send({});
+    expect(answer.status).toBe(403);
+    expect(answer.body.detail).toMatch(/too old to write/);
+  });
+});
+
+const estateRoutes = () => routesOf(app.server).filter(({ belowEstate }) => belowEstate);
+
+function opens(one: Door, route: { method: string; path: string }): boolean {
+  const pattern = new RegExp(`^${route.path.replace(/^\/$/, '').replace(/:\w+/g, '[^/]+')}$`);
+  return one.method === route.method && pattern.test(one.path.split('?')[0]!);
+}
+
+/** Name of the first parameter in the address of a door. */
+function parameterOf(method: string, path: string): string {
+  const route = estateRoutes().find((each) => opens({ method, path } as Door, each) && each.path.includes(':'))!;
+  return /:(\w+)/.exec(route.path)![1]!;
+}

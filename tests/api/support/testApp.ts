@@ -1,3 +1,4 @@
+import type { Express } from 'express';
 import type { Knex } from 'knex';
 import pg from 'pg';
 import supertest from 'supertest';
@@ -25,6 +26,7 @@ export interface Agent {
 }
 
 export interface TestApp {
+  server: Express;
   knex: Knex;
   config: Config;
   /** A browser with its own cookies; every write carries the token of its session. */
@@ -79,6 +81,7 @@ export async function startTestApp(env: Record<string, string> = {}): Promise<Te
   };
 
   return {
+    server: app,
     knex,
     config,
     browser,

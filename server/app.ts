@@ -12,6 +12,7 @@ import { makePassport } from './access/signIn.ts';
 import type { Config } from './config.ts';
 import { Missing, problemOf } from './errors.ts';
 import { log } from './log.ts';
+import { bagRoutes } from './routes/bags.ts';
 import { blockRoutes } from './routes/blocks.ts';
 import { describedApi } from './routes/openapi.ts';
 import { formatRoutes } from './routes/formats.ts';
@@ -94,7 +95,7 @@ function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
-  router.use(planRoutes(), roundRoutes({ publicUrl }));
+  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes());
   router.use(harvestRoutes({ publicUrl }));
   return router;
 }

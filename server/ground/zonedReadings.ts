@@ -1,8 +1,11 @@
 import type { Point } from 'geojson';
 import { toUtm } from '../../shared/geo/utm.ts';
+import { Bag } from '../models/Bag.ts';
 import { Estate } from '../models/Estate.ts';
 import { asGeoJson } from '../models/geometry.ts';
 import { Reading } from '../models/Reading.ts';
+import { countedValue } from '../../shared/lab/belowDetection.ts';
+import { zoneOfBag } from './bagZone.ts';
 import { indexOfVine, type BlockVines } from './blockVines.ts';
 
 /** A reading with the zone its vine is in today. */
@@ -26,7 +29,8 @@ export interface ZonedReading {
 
 /**
  * Readings of a block with today's zone of their vines; corrected readings are replaced by their corrections.
- * A reading without row and number is given to the vine nearest to its position, within three metres.
+ * A reading without row and number is given to the vine nearest to its position, within three metres. A figure of a bag
+ * stands for the zone that most of the bag's vines are in; the bag counts as one place, and its figures as repeats.
  */
 export async function zonedReadings(estateId: string, options: { ground: BlockVines; zoneOf: Uint8Array; seasonId?: string; until?: Date }): Promise<ZonedReading[]> {
   const { ground, zoneOf } = options;
@@ -38,18 +42,20 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
     .select('readings.*', asGeoJson('readings.position').as('position'));
   if (options.seasonId) query.where('readings.seasonId', options.seasonId);
   if (options.until) query.where('readings.receivedAt', '<=', options.until);
-  const [rows, estate] = await Promise.all([query, Estate.query().findById(estateId).throwIfNotFound()]);
+  const [rows, estate, bags] = await Promise.all([query, Estate.query().findById(estateId).throwIfNotFound(), Bag.query().where({ estateId, blockId: ground.block.id }).whereNot({ state: 'void' }).select('id', 'vines')]);
+  const zoneByBag = new Map(bags.map((bag) => [bag.id, zoneOfBag(ground, zoneOf, bag.vines)]));
   const dayOf = dayIn(estate.timeZone);
   return rows.map((row) => {
     const vine = vineOf(ground, row);
+    const isOfBag = vine < 0 && row.bagId !== null;
     return {
       id: row.id,
       measureCode: row.measureCode,
-      value: row.value,
+      value: countedValue(row.value, row.flags as string[]),
       samples: row.samples,
-      zone: vine < 0 ? 0 : zoneOf[vine]!,
+      zone: isOfBag ? (zoneByBag.get(row.bagId!) ?? 0) : vine < 0 ? 0 : zoneOf[vine]!,
       visit: dayOf(row.takenAt),
-      vineKey: vine < 0 ? row.id : String(vine),
+      vineKey: isOfBag ? `bag ${row.bagId}` : vine < 0 ? row.id : String(vine),
       roundId: row.roundId,
       seasonId: row.seasonId,
       state: row.state,

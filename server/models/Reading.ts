@@ -3,10 +3,11 @@ import { EstateModel } from './BaseModel.ts';
 
 export class Reading extends EstateModel {
   static override tableName = 'readings';
-  static override jsonAttributes = ['flags'];
+  static override jsonAttributes = ['flags', 'exclusionProposal'];
 
   declare seasonId: string;
-  declare blockId: string;
+  /** Null for figures of a bag that nobody has told the origin of yet. */
+  declare blockId: string | null;
   declare rowId: string | null;
   declare ordinal: number | null;
   declare position: Point | null;
@@ -31,4 +32,12 @@ export class Reading extends EstateModel {
   declare excludedBy: string | null;
   declare flags: unknown;
   declare note: string;
+  declare instrument: string;
+  declare method: string;
+  declare analysedOn: string | null;
+  declare labFileId: string | null;
+  /** Who gave it its state last, and when. */
+  declare stateBy: string | null;
+  declare stateAt: Date | null;
+  declare exclusionProposal: { reason: string; by: string; at: string } | null;
 }

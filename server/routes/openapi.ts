@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
 import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
@@ -87,6 +88,12 @@ const operations: Operation[] = [
   { method: 'get', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'All that a phone needs for a day', answer: fieldRound },
   { method: 'patch', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'Open, close or call off a round', body: roundChange },
   { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/acknowledge', summary: 'Note that a round was seen' },
+  { method: 'get', path: '/api/estates/{estateId}/bags', summary: 'Bags with where they stand: expected, here, missing, extra', answer: bagList },
+  { method: 'post', path: '/api/estates/{estateId}/bags', summary: 'Store bags closed in the row; may be repeated; a label used twice is a conflict', body: bagBatch, answer: bagBatchAnswer },
+  { method: 'post', path: '/api/estates/{estateId}/bags/received', summary: 'Take bags in at the lab by their labels', body: bagReceipt, answer: bagReceiptAnswer },
+  { method: 'post', path: '/api/estates/{estateId}/bags/missing', summary: 'Say that bags are not at the lab', body: bagsMissing },
+  { method: 'post', path: '/api/estates/{estateId}/bags/swap', summary: 'Exchange the labels of two bags, with their results, for a reason', body: bagSwap },
+  { method: 'post', path: '/api/estates/{estateId}/bags/{bagId}/settle', summary: 'Settle a label that is on two bags', body: clashChoice },
   { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/results', summary: 'Means by zone, measure and day, with ranges and how many readings are missing', answer: resultsView },
   { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/ripening', summary: 'Series by zone with change, trend and forecast', answer: ripeningView },

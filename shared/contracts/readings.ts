@@ -49,7 +49,7 @@ export type BatchAnswer = z.infer<typeof batchAnswer>;
 
 export const readingView = z.object({
   id,
-  blockId: id,
+  blockId: id.nullable(),
   rowId: id.nullable(),
   rowLabel: z.string().nullable(),
   ordinal: z.number().nullable(),

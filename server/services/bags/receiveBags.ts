@@ -1,0 +1,48 @@
+import type { Access } from '../../access/access.ts';
+import { Clash, Missing } from '../../errors.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Bag } from '../../models/Bag.ts';
+import { Reading } from '../../models/Reading.ts';
+import { holdersOf } from './bagContext.ts';
+
+export interface Receipt {
+  code: string;
+  /** `extra`: nobody has sent what is in it yet; it is kept and waits for that. */
+  state: 'here' | 'hereBefore' | 'extra';
+}
+
+/** Takes bags in by their labels. Scanning one twice is harmless; a label that nobody has sent is an extra bag, not an error. */
+export async function receiveBags(access: Access, codes: readonly string[], now: Date): Promise<Receipt[]> {
+  const { estateId, personId } = access;
+  return Bag.transaction(async (trx) => {
+    await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
+    const wanted = [...new Set(codes)];
+    const holders = new Map((await holdersOf(trx, estateId, wanted)).map((bag) => [bag.code, bag]));
+    const receipts = wanted.map((code): Receipt => {
+      const bag = holders.get(code);
+      if (!bag || bag.state === 'printed') return { code, state: 'extra' };
+      return { code, state: bag.state === 'received' ? 'hereBefore' : 'here' };
+    });
+    const fresh = receipts.filter(({ state }) => state !== 'hereBefore').map(({ code }) => code);
+    await Bag.query(trx).where({ estateId }).whereIn('id', fresh.flatMap((code) => holders.get(code)?.id ?? [])).patch({ state: 'received', receivedAt: now, receivedBy: personId, missingAt: null, missingBy: null });
+    const unknown = fresh.filter((code) => !holders.has(code));
+    if (unknown.length > 0) await Bag.query(trx).insert(unknown.map((code) => ({ estateId, code, state: 'received' as const, receivedAt: now, receivedBy: personId })));
+    if (fresh.length > 0) await writeAudit(trx, access, { action: 'bags.receive', subjectType: 'bags', subjectId: estateId, subjectName: fresh.join(', ').slice(0, 200), after: { count: fresh.length, codes: fresh } });
+    return receipts;
+  });
+}
+
+/** Says that bags are not here: expected ones that did not come, or ones that were ticked by mistake. */
+export async function reportMissing(access: Access, bagIds: readonly string[], now: Date): Promise<void> {
+  const { estateId, personId } = access;
+  await Bag.transaction(async (trx) => {
+    const bags = await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).forUpdate();
+    if (bags.length !== new Set(bagIds).size) throw new Missing('Some of these bags are not in this estate.');
+    const unsent = bags.find(({ closedAt }) => closedAt === null);
+    if (unsent) throw new Clash('neverExpected', `Nobody has sent what is in ${unsent.code}; it cannot be missing.`);
+    const measured = await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bagIds).first();
+    if (measured) throw new Clash('measured', `${bags.find(({ id }) => id === measured.bagId)!.code} has results, so it was here. Exchange its label if the results belong to another bag.`);
+    await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).patch({ state: 'closed', receivedAt: null, receivedBy: null, missingAt: now, missingBy: personId });
+    await writeAudit(trx, access, { action: 'bags.missing', subjectType: 'bags', subjectId: estateId, subjectName: bags.map(({ code }) => code).join(', ').slice(0, 200), after: { count: bags.length } });
+  });
+}

@@ -1,0 +1,41 @@
+import type { z } from 'zod';
+import type { clashChoice } from '../../../shared/contracts/bags.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, Missing } from '../../errors.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { Bag } from '../../models/Bag.ts';
+import { Reading } from '../../models/Reading.ts';
+import { holdersOf } from './bagContext.ts';
+import { seasonOfBag, takeLabelOver } from './labels.ts';
+
+/**
+ * Settles a label that is on two bags. `same`: one bag was closed by two people; the first closing takes in the vines and
+ * readings of the later. `keepFirst`: the later one is void and its own readings are left out with the reason.
+ * `relabel`: both are real and the later one carries another label. Nothing is deleted.
+ */
+export async function settleClash(access: Access, bagId: string, input: z.infer<typeof clashChoice>): Promise<void> {
+  const { estateId, personId } = access;
+  await Bag.transaction(async (trx) => {
+    await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
+    const later = await Bag.query(trx).findOne({ estateId, id: bagId }).throwIfNotFound();
+    if (later.clashesWith === null || later.state === 'void') throw new Clash('settled', `${later.code} is on one bag only; there is nothing to settle.`);
+    const first = await Bag.query(trx).findOne({ estateId, id: later.clashesWith }).throwIfNotFound();
+    const closing = Bag.query(trx).where({ estateId, id: later.id });
+    if (input.choice === 'same') {
+      const extra = later.vines.filter((vine) => !first.vines.some((one) => one.rowId === vine.rowId && one.ordinal === vine.ordinal));
+      await Bag.query(trx).where({ estateId, id: first.id }).patch({ vines: [...first.vines, ...extra] });
+      await Reading.query(trx).where({ estateId, bagId: later.id }).patch({ bagId: first.id });
+      await closing.patch({ state: 'void' });
+    } else if (input.choice === 'keepFirst') {
+      await Reading.query(trx).where({ estateId, bagId: later.id }).patch({ excludedReason: input.reason, excludedBy: personId });
+      await closing.patch({ state: 'void' });
+    } else {
+      if (input.newCode === null) throw new Missing('Name the label that the later bag carries now.');
+      const [holder] = await holdersOf(trx, estateId, [input.newCode]);
+      if (holder?.closedAt) throw new Clash('labelTaken', `The label ${input.newCode} is on another bag already. Name one that is free.`);
+      await closing.patch({ code: input.newCode, clashesWith: holder?.id ?? null });
+      if (holder) await takeLabelOver(trx, access, { bag: later, from: holder, seasonId: await seasonOfBag(trx, estateId, later) });
+    }
+    await writeAudit(trx, access, { action: 'bags.settle', subjectType: 'bags', subjectId: later.id, subjectName: later.code, before: { first: first.id, later: later.id }, after: { choice: input.choice, newCode: input.newCode }, reason: input.reason });
+  });
+}

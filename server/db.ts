@@ -7,6 +7,7 @@ import * as m003 from '../migrations/003_zones.ts';
 import * as m004 from '../migrations/004_sampling.ts';
 import * as m005 from '../migrations/005_lots.ts';
 import * as m006 from '../migrations/006_lab.ts';
+import * as m007 from '../migrations/007_labels.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -16,6 +17,7 @@ const migrations: Record<string, Knex.Migration> = {
   '004_sampling': m004,
   '005_lots': m005,
   '006_lab': m006,
+  '007_labels': m007,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

@@ -3,6 +3,7 @@ import QRCode from 'qrcode';
 import type { FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { restrictionsAt } from '../../shared/field/entry.ts';
 import { measureWords } from './measureWords.ts';
+import { drawSheetStrip } from './sheetStrip.ts';
 import { sheetTexts, type SheetLanguage } from './sheetTexts.ts';
 
 /** One person's walk on paper, in black and white. */
@@ -22,6 +23,7 @@ type Texts = (typeof sheetTexts)[SheetLanguage];
 
 const edge = 36;
 const lineHeight = 30;
+const stripHeight = 132;
 
 /** The walks of a round as PDF: a page run a person, vines in walking order with large boxes, safety card and QR to the round. */
 export async function crewSheet(parts: readonly SheetPart[], options: SheetOptions): Promise<Buffer> {
@@ -38,18 +40,29 @@ export async function crewSheet(parts: readonly SheetPart[], options: SheetOptio
 
 function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[part.language];
+  let page = 1;
   pdf.addPage();
+  drawFoot(pdf, part, page);
   drawHead(pdf, part, options);
+  const { startPostColour, endPostColour } = part.round;
+  const strip = { x: edge, y: pdf.y + 6, width: pdf.page.width - 2 * edge, height: stripHeight };
+  drawSheetStrip(pdf, part.round, strip, { row: texts.row, start: texts.colours[startPostColour], end: texts.colours[endPostColour] });
   const columns = columnsOf(pdf, part);
-  let y = drawTableHead(pdf, columns, { texts, y: pdf.y + 6 });
+  let y = drawTableHead(pdf, columns, { texts, y: strip.y + stripHeight + 8 });
   for (const stop of part.round.stops) {
     if (y + lineHeight > pdf.page.height - edge - 16) {
       pdf.addPage();
+      drawFoot(pdf, part, ++page);
       y = drawTableHead(pdf, columns, { texts, y: edge });
     }
     drawStop(pdf, columns, { stop, round: part.round, texts, y });
     y += lineHeight;
   }
+}
+
+/** Sheets of several people lie on one pile: each page says whose it is. */
+function drawFoot(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, page: number): void {
+  pdf.font('Helvetica').fontSize(8).text(`${round.blockName}, ${person}. ${sheetTexts[language].page} ${page}`, edge, pdf.page.height - edge - 9, { lineBreak: false });
 }
 
 function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {

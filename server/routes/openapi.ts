@@ -94,6 +94,8 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/estates/{estateId}/bags/missing', summary: 'Say that bags are not at the lab', body: bagsMissing },
   { method: 'post', path: '/api/estates/{estateId}/bags/swap', summary: 'Exchange the labels of two bags, with their results, for a reason', body: bagSwap },
   { method: 'post', path: '/api/estates/{estateId}/bags/{bagId}/settle', summary: 'Settle a label that is on two bags', body: clashChoice },
+  { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/labels', summary: 'Bag labels of a round as PDF: sheet (a4, letter) or single; the same labels again when asked again' },
+  { method: 'post', path: '/api/estates/{estateId}/labels', summary: 'Blank bag labels as PDF, bound when a bag is closed' },
   { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/results', summary: 'Means by zone, measure and day, with ranges and how many readings are missing', answer: resultsView },
   { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/ripening', summary: 'Series by zone with change, trend and forecast', answer: ripeningView },

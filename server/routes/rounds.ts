@@ -7,11 +7,15 @@ import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts
 import { fieldRound } from '../services/rounds/fieldRound.ts';
 import { listRounds } from '../services/rounds/listRounds.ts';
 import { makeRound } from '../services/rounds/makeRound.ts';
+import { printBlankLabels, printLabels } from '../services/rounds/printLabels.ts';
 import { printSheet } from '../services/rounds/printSheet.ts';
 
 const filter = z.object({ block: id.optional(), plan: id.optional() });
 
 const sheetQuery = z.object({ paper: z.enum(['a4', 'letter']).default('a4') });
+const labelPaper = z.enum(['a4', 'letter', 'single']).default('a4');
+const labelQuery = z.object({ paper: labelPaper, per: z.enum(['vine', 'zone']).default('vine') });
+const blankQuery = z.object({ paper: labelPaper, count: z.coerce.number().int().min(1, 'Print at least one label.').max(500, 'At most 500 labels at once.') });
 
 /** Rounds: a plan's vines sent to people for a day. Crew see their own. */
 export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
@@ -42,6 +46,14 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
     const { paper } = sheetQuery.parse(request.query);
     const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
     const { name, body } = await printSheet(accessOf(request), idParam(request, 'roundId'), { paper, publicUrl, now: new Date() });
+    response.set('content-type', 'application/pdf').attachment(name).send(body);
+  });
+  router.post('/rounds/:roundId/labels', allow('sheets.print', 'own'), async (request, response) => {
+    const { name, body } = await printLabels(accessOf(request), idParam(request, 'roundId'), { ...labelQuery.parse(request.query), now: new Date() });
+    response.set('content-type', 'application/pdf').attachment(name).send(body);
+  });
+  router.post('/labels', allow('sheets.print', 'own'), async (request, response) => {
+    const { name, body } = await printBlankLabels(accessOf(request), blankQuery.parse(request.query));
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   return router;

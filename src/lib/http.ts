@@ -159,9 +159,9 @@ function upload<T>(path: string, form: FormData, options: UploadOptions = {}): P
   });
 }
 
-/** Fetches a file and hands it to the browser under the name the server gave, or the one given here. */
-async function download(path: string, fallbackName: string, options: RequestOptions = {}): Promise<string> {
-  const response = await send('GET', path, { options });
+/** Fetches a file and hands it to the browser under the name the server gave, or the one given here; `POST` where making it is a deed. */
+async function download(path: string, fallbackName: string, options: RequestOptions & { method?: 'GET' | 'POST' } = {}): Promise<string> {
+  const response = await send(options.method ?? 'GET', path, { options });
   const name = fileNameFrom(response.headers.get('content-disposition')) ?? fallbackName;
   const address = URL.createObjectURL(await response.blob());
   const link = document.createElement('a');

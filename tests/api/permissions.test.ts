@@ -85,6 +85,8 @@ const doors: Door[] = [
   door('patch', `/rounds/${nobody}`, 'readings.record', 'own'),
   door('post', `/rounds/${nobody}/acknowledge`, 'notices.acknowledge'),
   door('get', `/rounds/${nobody}/sheet`, 'sheets.print', 'own'),
+  door('post', `/rounds/${nobody}/labels`, 'sheets.print', 'own'),
+  door('post', '/labels', 'sheets.print', 'own'),
   door('post', `/blocks/${nobody}/zonings`, 'zoning.run', 'propose'),
   door('get', `/blocks/${nobody}/zonings`, 'estate.see', 'read'),
   door('get', '/zonings', 'estate.see', 'read'),

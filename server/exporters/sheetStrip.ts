@@ -1,0 +1,66 @@
+import type { FieldRound } from '../../shared/contracts/rounds.ts';
+
+/** Where the strip stands on the page, in points. */
+export interface StripPlace {
+  x: number;
+  y: number;
+  width: number;
+  height: number;
+}
+
+interface StripWords {
+  row: string;
+  /** Post colours at the start end and the far end of the rows. */
+  start: string;
+  end: string;
+}
+
+const labelRoom = 11;
+const widestPitch = 16;
+
+/**
+ * The block as its rows side by side, each from its start post at the bottom to its far post: zones in greys, the stops
+ * with their numbers. What the crew sees when it looks along the headland.
+ */
+export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place: StripPlace, words: StripWords): void {
+  const { rows, stops } = round;
+  if (rows.length === 0) return;
+  pdf.font('Helvetica').fontSize(7).fillColor('black');
+  pdf.text(words.end, place.x, place.y, { lineBreak: false });
+  pdf.text(words.start, place.x, place.y + place.height - 8, { lineBreak: false });
+  const side = Math.max(pdf.widthOfString(words.start), pdf.widthOfString(words.end)) + 6;
+  const left = place.x + side;
+  const pitch = Math.min(widestPitch, (place.width - side) / rows.length);
+  const [top, bottom] = [place.y + 2, place.y + place.height - labelRoom];
+  const most = Math.max(...rows.map(({ vineCount }) => vineCount), 1);
+  const heightOf = (vines: number) => (vines / most) * (bottom - top);
+  const visited = new Set(stops.map(({ rowId }) => rowId));
+  rows.forEach((row, index) => {
+    const x = left + (index + 0.5) * pitch;
+    for (const { zone, from, to } of row.runs) {
+      const [low, high] = [heightOf(from - row.firstOrdinal), heightOf(to - row.firstOrdinal + 1)];
+      pdf.rect(x - pitch * 0.42, bottom - high, pitch * 0.84, high - low).fill(greyOf(zone));
+    }
+    pdf.moveTo(x, bottom).lineTo(x, bottom - heightOf(row.vineCount)).lineWidth(visited.has(row.id) ? 0.9 : 0.3).strokeColor(visited.has(row.id) ? 'black' : '#888888').stroke();
+    if (visited.has(row.id) && (pitch >= 8 || index % Math.ceil(10 / pitch) === 0)) pdf.fillColor('black').fontSize(6.5).text(row.label, x - 12, bottom + 3, { width: 24, align: 'center', lineBreak: false });
+  });
+  const indexOf = new Map(rows.map((row, index) => [row.id, index]));
+  for (const stop of stops) {
+    const index = indexOf.get(stop.rowId);
+    if (index === undefined) continue;
+    const row = rows[index]!;
+    drawStopMark(pdf, String(stop.number), { x: left + (index + 0.5) * pitch, y: bottom - heightOf(stop.ordinal - row.firstOrdinal + 0.5) });
+  }
+  pdf.fillColor('black').strokeColor('black');
+}
+
+/** Light enough that a number on it reads, different enough that neighbours in a photocopy do. */
+function greyOf(zone: number): string {
+  return ['#f2f2f2', '#d9d9d9', '#e6e6e6', '#c9c9c9', '#ededed', '#d0d0d0'][Math.max(0, zone - 1) % 6]!;
+}
+
+function drawStopMark(pdf: PDFKit.PDFDocument, text: string, { x, y }: { x: number; y: number }): void {
+  const radius = text.length > 2 ? 6 : 5;
+  pdf.circle(x, y, radius).lineWidth(0.7).fillAndStroke('white', 'black');
+  pdf.font('Helvetica-Bold').fontSize(6.5).fillColor('black').text(text, x - 10, y - 2.4, { width: 20, align: 'center', lineBreak: false });
+}

@@ -16,6 +16,8 @@ export interface RoutePlace {
 export const routePlaces = {
   signIn: { path: '/sign-in', frame: 'door' },
   join: { path: '/join/:token', frame: 'door' },
+  forgotten: { path: '/forgotten', frame: 'door' },
+  reset: { path: '/reset/:token', frame: 'door' },
   home: { path: '/', frame: 'door' },
   today: { path: '/e/:estateId/today', frame: 'office' },
   estate: { path: '/e/:estateId/estate', frame: 'office' },
@@ -47,6 +49,7 @@ export const routePlaces = {
   history: { path: '/e/:estateId/history', frame: 'office', needs: ['audit.see', 'read'] },
   help: { path: '/e/:estateId/help', frame: 'office' },
   account: { path: '/account', frame: 'office' },
+  estateNew: { path: '/estates/new', frame: 'office' },
   fieldWork: { path: '/e/:estateId/field', frame: 'field', needs: ['readings.record', 'own'] },
   fieldWalk: { path: '/e/:estateId/field/rounds/:roundId', frame: 'field', needs: ['readings.record', 'own'] },
   fieldBag: { path: '/e/:estateId/field/rounds/:roundId/bag', frame: 'field', needs: ['readings.record', 'own'] },

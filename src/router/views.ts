@@ -7,7 +7,13 @@ type LazyView = () => Promise<{ default: Component }>;
 export const views: Partial<Record<RouteName, LazyView>> = {
   signIn: () => import('../views/door/SignInView.vue'),
   join: () => import('../views/door/JoinView.vue'),
+  forgotten: () => import('../views/door/ForgottenView.vue'),
+  reset: () => import('../views/door/ResetView.vue'),
   home: () => import('../views/door/HomeView.vue'),
+  today: () => import('../views/today/TodayView.vue'),
+  account: () => import('../views/account/AccountView.vue'),
+  estateNew: () => import('../views/people/EstateNewView.vue'),
+  help: () => import('../views/help/HelpView.vue'),
   estate: () => import('../views/estate/EstateView.vue'),
   blockNew: () => import('../views/blocks/BlockNewView.vue'),
   block: () => import('../views/blocks/BlockBookView.vue'),

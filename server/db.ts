@@ -8,7 +8,7 @@ import * as m004 from '../migrations/004_sampling.ts';
 import * as m005 from '../migrations/005_lots.ts';
 import * as m006 from '../migrations/006_lab.ts';
 import * as m007 from '../migrations/007_labels.ts';
-import * as m012 from '../migrations/012_invited_roles_and_backups.ts';
+import * as m009 from '../migrations/009_field.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -19,7 +19,7 @@ const migrations: Record<string, Knex.Migration> = {
   '005_lots': m005,
   '006_lab': m006,
   '007_labels': m007,
-  '012_invited_roles_and_backups': m012,
+  '009_field': m009,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

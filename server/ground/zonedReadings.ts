@@ -55,7 +55,8 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
       samples: row.samples,
       zone: isOfBag ? (zoneByBag.get(row.bagId!) ?? 0) : vine < 0 ? 0 : zoneOf[vine]!,
       visit: dayOf(row.takenAt),
-      vineKey: isOfBag ? `bag ${row.bagId}` : vine < 0 ? row.id : String(vine),
+      // Somebody who settled a conflict said that a `separate` one was a vine of its own.
+      vineKey: isOfBag ? `bag ${row.bagId}` : vine < 0 || (row.flags as string[]).includes('separate') ? row.id : String(vine),
       roundId: row.roundId,
       seasonId: row.seasonId,
       state: row.state,

@@ -6,7 +6,7 @@ export class Invitation extends EstateModel {
 
   declare email: string;
   declare name: string;
-  declare roles: Role[];
+  declare role: Role;
   declare accessEndsOn: string | null;
   declare language: string;
   declare tokenHash: string;

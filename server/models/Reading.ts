@@ -3,7 +3,7 @@ import { EstateModel } from './BaseModel.ts';
 
 export class Reading extends EstateModel {
   static override tableName = 'readings';
-  static override jsonAttributes = ['flags', 'exclusionProposal'];
+  static override jsonAttributes = ['flags', 'exclusionProposal', 'seenAs'];
 
   declare seasonId: string;
   /** Null for figures of a bag that nobody has told the origin of yet. */
@@ -24,6 +24,7 @@ export class Reading extends EstateModel {
   declare deviceTime: Date | null;
   declare receivedAt: Date;
   declare personId: string | null;
+  declare typedBy: string | null;
   declare deviceId: string | null;
   declare source: 'field' | 'lab' | 'import' | 'paper' | 'demo';
   declare supersedes: string | null;
@@ -40,4 +41,6 @@ export class Reading extends EstateModel {
   declare stateBy: string | null;
   declare stateAt: Date | null;
   declare exclusionProposal: { reason: string; by: string; at: string } | null;
+  /** Row and vine as they were shown where it was read. */
+  declare seenAs: { row: string; vine: number } | null;
 }

@@ -1,9 +1,11 @@
 import { Router } from 'express';
-import { conflictChoice, readingBatch, readingExclusion, readingQuery } from '../../shared/contracts/readings.ts';
+import { conflictChoice } from '../../shared/contracts/conflicts.ts';
+import { readingBatch, readingExclusion, readingQuery } from '../../shared/contracts/readings.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
-import { listConflicts, settleConflict } from '../services/readings/conflicts.ts';
+import { listConflicts } from '../services/readings/listConflicts.ts';
 import { excludeReading, listReadings } from '../services/readings/listReadings.ts';
 import { recordBatch } from '../services/readings/recordBatch.ts';
+import { settleConflict } from '../services/readings/settleConflict.ts';
 
 /** Readings: appended in batches that may be repeated, never changed, left out only with a reason. */
 export function readingRoutes(): Router {
@@ -18,11 +20,10 @@ export function readingRoutes(): Router {
     await excludeReading(accessOf(request), idParam(request, 'readingId'), readingExclusion.parse(request.body).reason);
     response.status(204).end();
   });
-  router.get('/conflicts', allow('readings.correct'), async (request, response) => {
-    const items = await listConflicts(accessOf(request));
-    response.json({ items, total: items.length });
+  router.get('/conflicts', allow('conflicts.settle', 'own'), async (request, response) => {
+    response.json(await listConflicts(accessOf(request)));
   });
-  router.post('/conflicts/:conflictId/settle', allow('readings.correct'), async (request, response) => {
+  router.post('/conflicts/:conflictId/settle', allow('conflicts.settle', 'own'), async (request, response) => {
     await settleConflict(accessOf(request), idParam(request, 'conflictId'), conflictChoice.parse(request.body), new Date());
     response.status(204).end();
   });

@@ -2,6 +2,7 @@ import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
 import { newRound, roundChange } from '../../shared/contracts/rounds.ts';
+import { requireReach } from '../access/access.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts';
 import { fieldRound } from '../services/rounds/fieldRound.ts';
@@ -12,6 +13,8 @@ import { printSheet } from '../services/rounds/printSheet.ts';
 
 const filter = z.object({ block: id.optional(), plan: id.optional() });
 
+/** Somebody else's walk, for typing their sheet. */
+const walkQuery = z.object({ person: id.optional() });
 const sheetQuery = z.object({ paper: z.enum(['a4', 'letter']).default('a4') });
 const labelPaper = z.enum(['a4', 'letter', 'single']).default('a4');
 const labelQuery = z.object({ paper: labelPaper, per: z.enum(['vine', 'zone']).default('vine') });
@@ -32,7 +35,10 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
     response.json({ items, total: items.length });
   });
   router.get('/rounds/:roundId', own, async (request, response) => {
-    response.json(await fieldRound(accessOf(request), idParam(request, 'roundId'), new Date()));
+    const { person } = walkQuery.parse(request.query);
+    const access = accessOf(request);
+    if (person !== undefined && person !== access.personId) requireReach(access, 'readings.record');
+    response.json(await fieldRound(person === undefined ? access : { ...access, personId: person }, idParam(request, 'roundId'), new Date()));
   });
   router.patch('/rounds/:roundId', own, async (request, response) => {
     await changeRound(accessOf(request), idParam(request, 'roundId'), roundChange.parse(request.body), new Date());

@@ -26,19 +26,23 @@ export const newReading = z
     supersedes: id.nullable().default(null),
     flags: z.array(z.enum(['odd', 'reserve', 'wetFruit', 'belowDetection', 'repeat'])).max(8).default([]),
     note: z.string().max(600).default(''),
+    /** Who read it, when somebody else types it from paper. */
+    readBy: id.nullable().default(null),
+    /** Row and vine as they were shown where it was read: tells a renumbering that happened meanwhile. */
+    seenAs: z.object({ row: z.string().max(20), vine: z.number().int() }).nullable().default(null),
   })
   .refine((reading) => reading.bagId !== null || (reading.rowId !== null && reading.ordinal !== null), { message: 'A reading needs its vine (row and number) or its bag.', path: ['rowId'] });
 export type NewReading = z.infer<typeof newReading>;
 
 /** What a person found instead of a bearing vine: a proposal for the census. */
-export const vineFinding = z.object({ id, blockId: id, rowId: id, ordinal: z.number().int().min(-10_000).max(100_000), state: vineState, roundId: id.nullable().default(null), notedAt: isoTime });
+export const vineFinding = z.object({ id, blockId: id, rowId: id, ordinal: z.number().int().min(-10_000).max(100_000), state: vineState, roundId: id.nullable().default(null), notedAt: isoTime, deviceId: z.string().max(80).nullable().default(null), readBy: id.nullable().default(null) });
 export type VineFinding = z.infer<typeof vineFinding>;
 
-export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).default([]), findings: z.array(vineFinding).max(500).default([]) });
+export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).default([]), findings: z.array(z.unknown()).max(500).default([]) });
 
 export const readingOutcome = z.object({
   id: z.string(),
-  /** `received`: stored now or before. `refused`: not stored, for the reason given. `conflict`: stored beside another reading of the same vine. */
+  /** `received`: stored now or before; with a reason when a line of paper repeats what the phone had sent. `refused`: not stored, for the reason given. `conflict`: stored beside another reading of the same vine. */
   state: z.enum(['received', 'conflict', 'refused']),
   reason: z.string().nullable(),
 });
@@ -80,4 +84,3 @@ export const readingQuery = z.object({
 });
 
 export const readingExclusion = z.object({ reason: z.string().trim().min(3, 'Say why this reading is left out.').max(300).nullable() });
-export const conflictChoice = z.object({ choice: z.enum(['keepOne', 'repeat', 'bothReal']), keptReadingId: id.nullable().default(null) });

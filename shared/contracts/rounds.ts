@@ -105,6 +105,8 @@ export const fieldRound = z.object({
   measures: z.array(fieldMeasure),
   rows: z.array(fieldRow),
   stops: z.array(walkStop),
+  /** Walks of the others, so that a phone without signal can take one over. */
+  others: z.array(z.object({ id, name: z.string(), stops: z.array(walkStop) })).default([]),
   received: z.array(fieldReading),
   /** Vines that somebody has read already, whoever it was. */
   doneTargetIds: z.array(id),

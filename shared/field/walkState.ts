@@ -3,7 +3,8 @@ import type { FieldMeasure, FieldRound, WalkStop } from '../contracts/rounds.ts'
 /** What was typed in a round, as far as the walk needs it. */
 export interface WalkEntry {
   readonly id: string;
-  readonly kind: 'reading' | 'finding';
+  /** `pick`: fruit of the vine is in the bag that is open. */
+  readonly kind: 'reading' | 'finding' | 'pick';
   readonly targetId: string | null;
   readonly measureCode: string | null;
   readonly rowId: string;
@@ -37,10 +38,11 @@ export function vineAt(stop: WalkStop, entries: readonly WalkEntry[]): StopVine 
 /** Measures that are still to be read at a stop. */
 export function openAt(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): FieldMeasure[] {
   if (vineAt(stop, entries) === null) return [];
+  const isPicked = entries.some((entry) => entry.kind === 'pick' && entry.targetId === stop.targetId);
   const isRead = (code: string) =>
     entries.some((entry) => entry.kind === 'reading' && entry.targetId === stop.targetId && entry.measureCode === code) ||
     round.received.some((reading) => reading.targetId === stop.targetId && reading.measureCode === code);
-  return askedAt(round, stop).filter(({ code }) => !isRead(code));
+  return askedAt(round, stop).filter(({ code, measuredIn }) => !isRead(code) && !(isPicked && measuredIn === 'lab'));
 }
 
 export function isStopDone(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): boolean {

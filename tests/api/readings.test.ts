@@ -78,6 +78,7 @@ describe('a batch of readings', () => {
     await send(agronomist, a);
     expect((await send(manager, b))[0]!.state).toBe('conflict');
     expect(await Reading.query().resultSize()).toBe(2);
+    expect((await send(manager, b))[0]!.state).toBe('conflict');
     const { items } = (await manager.get(`${base()}/conflicts`)).body as { items: { id: string; readingIds: string[] }[] };
     expect(items).toHaveLength(1);
     expect(items[0]!.readingIds.sort()).toEqual([a.id, b.id].sort());

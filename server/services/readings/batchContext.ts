@@ -5,6 +5,7 @@ import { Bag } from '../../models/Bag.ts';
 import { Block } from '../../models/Block.ts';
 import { BlockRow } from '../../models/BlockRow.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Membership } from '../../models/Membership.ts';
 import { Reading } from '../../models/Reading.ts';
 import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
@@ -18,16 +19,20 @@ export interface BatchContext {
   bags: Set<string>;
   measures: Map<string, MeasureRecord>;
   known: Map<string, Reading>;
+  /** People whose readings the sender may bring: those who walk the same rounds for crew, members of the estate otherwise. */
+  readers: Set<string>;
   ownRoundsOnly: boolean;
+  now: Date;
   seasonOn: (isoTime: string) => string | null;
 }
 
-export async function loadBatchContext(trx: Transaction, access: Access, batch: { readings: NewReading[]; findings: VineFinding[]; ownRoundsOnly: boolean }): Promise<BatchContext> {
+export async function loadBatchContext(trx: Transaction, access: Access, batch: { readings: NewReading[]; findings: VineFinding[]; ownRoundsOnly: boolean; now: Date }): Promise<BatchContext> {
   const { readings, findings } = batch;
   const estateId = access.estateId;
   const ids = (pick: (reading: NewReading) => string | null) => [...new Set(readings.map(pick).filter((value) => value !== null))];
   const rowIds = [...new Set([...ids((reading) => reading.rowId), ...findings.map((finding) => finding.rowId)])];
-  const rounds = Round.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.roundId)).select('id');
+  const roundIds = new Set([...ids((reading) => reading.roundId), ...findings.flatMap(({ roundId }) => (roundId === null ? [] : [roundId]))]);
+  const rounds = Round.query(trx).where({ estateId }).whereIn('id', [...roundIds]).select('id');
   if (batch.ownRoundsOnly) rounds.whereIn('id', RoundPerson.query(trx).where({ estateId, personId: access.personId }).select('roundId'));
   // One connection serves a transaction, so these run one after the other; each is one statement for the whole batch.
   const blocks = await Block.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.blockId)).select('id');
@@ -38,6 +43,10 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
   const known = await Reading.query(trx)
     .where({ estateId })
     .whereIn('id', [...readings.map((reading) => reading.id), ...ids((reading) => reading.supersedes)]);
+  const readerIds = [...ids(({ readBy }) => readBy), ...findings.flatMap(({ readBy }) => (readBy === null ? [] : [readBy]))];
+  const readers: { personId: string }[] = batch.ownRoundsOnly
+    ? await RoundPerson.query(trx).where({ estateId }).whereIn('roundId', roundRows.map(({ id }) => id)).whereIn('personId', readerIds).select('personId')
+    : await Membership.query(trx).where({ estateId }).whereIn('personId', readerIds).select('personId');
   const seasons = await Season.query(trx).where({ estateId });
   return {
     blocks: new Set(blocks.map((block) => block.id)),
@@ -46,7 +55,9 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
     bags: new Set(bags.map((bag) => bag.id)),
     measures: new Map(measures.map((measure) => [measure.code, measure])),
     known: new Map(known.map((reading) => [reading.id, reading])),
+    readers: new Set([access.personId, ...readers.map(({ personId }) => personId)]),
     ownRoundsOnly: batch.ownRoundsOnly,
+    now: batch.now,
     seasonOn: (isoTime) => {
       const day = new Date(isoTime).toISOString().slice(0, 10);
       return seasons.find((season) => season.startsOn <= day && day <= season.endsOn)?.id ?? null;

@@ -8,6 +8,7 @@ import { BlockRow } from '../../models/BlockRow.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import { Person } from '../../models/Person.ts';
 import { Reading } from '../../models/Reading.ts';
+import { nameFor } from './readerName.ts';
 
 const pageSize = 500;
 
@@ -54,12 +55,6 @@ function viewOf(row: Reading, labels: BlockRow[], person: string | null): Readin
     flags: row.flags as string[],
     note: row.note,
   };
-}
-
-function nameFor(access: Access, people: Person[], personId: string | null): string | null {
-  const name = people.find((person) => person.id === personId)?.name ?? null;
-  if (name === null || personId === access.personId || may(access.roles, 'names.see')) return name;
-  return may(access.roles, 'names.see', 'read') ? name.split(/\s+/).map((word) => `${word.charAt(0)}.`).join(' ') : null;
 }
 
 /** Leaves a reading out of the figures with a reason, or takes it in again (reason null). It is never deleted. */

@@ -42,6 +42,8 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
   const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, zoneNumber.get(zoneId) ?? 0]));
   const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId');
   const { block } = ground;
+  const targetOf = new Map(targets.map((target) => [target.id, target]));
+  const stopsOf = (list: StoredStop[]) => list.flatMap((stop) => stopOf(stop, { ground, target: targetOf.get(stop.targetId), zone: zoneOfTarget.get(stop.targetId) ?? 0 }));
   return {
     id: round.id, planId: plan.id, planName: plan.name, blockId: block.id, blockName: block.name, estateName: estate.name,
     onDate: round.onDate, state: round.state, gate: round.gate, notes: round.notes,
@@ -50,7 +52,8 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     zones: basis.zones.map(({ number, name, colour, vines }) => ({ number, name, colour, vines, targets: stops.filter(({ targetId }) => zoneOfTarget.get(targetId) === number).length })),
     measures: await fieldMeasures(estateId, plan),
     rows: await fieldRows(estateId, ground, plan),
-    stops: stops.flatMap((stop) => stopOf(stop, { ground, target: targets.find(({ id }) => id === stop.targetId), zone: zoneOfTarget.get(stop.targetId) ?? 0 })),
+    stops: stopsOf(stops),
+    others: me ? shares.filter((share) => share.personId !== personId).map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', stops: stopsOf(share.stops) })) : [],
     received: readings.filter((reading) => reading.personId === personId).map(({ id, targetId, measureCode, value }) => ({ id, targetId, measureCode, value, zone: targetId === null ? 0 : zoneOfTarget.get(targetId) ?? 0 })),
     doneTargetIds: [...new Set(readings.flatMap(({ targetId }) => (targetId === null ? [] : [targetId])))],
     safety: safetyOf(estate),

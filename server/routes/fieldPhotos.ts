@@ -1,0 +1,42 @@
+import { Router, type RequestHandler } from 'express';
+import { pipeline } from 'node:stream/promises';
+import { z } from 'zod';
+import { id } from '../../shared/contracts/common.ts';
+import { newFieldPhoto } from '../../shared/contracts/fieldPhotos.ts';
+import { accessOf, allow, idParam } from '../access/guard.ts';
+import { Unusable } from '../errors.ts';
+import { keepPhoto, listPhotos, openPhoto } from '../services/photos/fieldPhotos.ts';
+import { uploadsOf } from '../storage/uploads.ts';
+
+const filter = z.object({ block: id.optional() });
+
+/** Photos of vines: sent by phones, seen in the office, without place or device in the file. */
+export function fieldPhotoRoutes(options: { receive: RequestHandler }): Router {
+  const router = Router({ mergeParams: true });
+  const own = allow('readings.record', 'own');
+  router.get('/field-photos', own, async (request, response) => {
+    const { block } = filter.parse(request.query);
+    const items = await listPhotos(accessOf(request), block ? { blockId: block } : {});
+    response.json({ items, total: items.length });
+  });
+  router.post('/field-photos', own, options.receive, async (request, response) => {
+    await keepPhoto(accessOf(request), newFieldPhoto.parse(factsOf(request.body)), uploadsOf(request.files));
+    response.status(201).json({ id: newFieldPhoto.parse(factsOf(request.body)).id });
+  });
+  router.get('/field-photos/:photoId', own, async (request, response) => {
+    const { name, bytes, stream } = await openPhoto(accessOf(request), idParam(request, 'photoId'));
+    response.set({ 'content-type': 'image/jpeg', 'content-length': String(bytes), 'content-disposition': `inline; filename="${name}"`, 'cache-control': 'private, max-age=86400' });
+    await pipeline(stream, response);
+  });
+  return router;
+}
+
+/** The text that comes beside the picture. */
+function factsOf(body: unknown): unknown {
+  const text = typeof body === 'object' && body !== null && 'facts' in body ? body.facts : null;
+  try {
+    return JSON.parse(typeof text === 'string' ? text : '');
+  } catch {
+    throw new Unusable('badFacts', 'Send what the photo shows as JSON in the field "facts".');
+  }
+}

@@ -1,0 +1,32 @@
+import type { Transaction } from 'objection';
+import { reachOf } from '../../../shared/catalog/permissions.ts';
+import type { ReadingOutcome, VineFinding } from '../../../shared/contracts/readings.ts';
+import type { Access } from '../../access/access.ts';
+import { writeVines } from '../../models/Vine.ts';
+import { VineFindingRecord } from '../../models/VineFindingRecord.ts';
+import type { BatchContext } from './batchContext.ts';
+
+/** Stores findings once each and marks the census with the fresh ones, as proposals where the role may only propose. */
+export async function storeFindings(trx: Transaction, access: Access, findings: readonly VineFinding[], context: BatchContext): Promise<ReadingOutcome[]> {
+  const proposed = reachOf(access.roles, 'census.edit') !== 'do';
+  const known = new Set((await VineFindingRecord.query(trx).where({ estateId: access.estateId }).whereIn('id', findings.map(({ id }) => id)).select('id')).map(({ id }) => id));
+  const outcomes: ReadingOutcome[] = [];
+  for (const finding of findings) {
+    const reason = known.has(finding.id) ? null : refusalOf(finding, context);
+    outcomes.push({ id: finding.id, state: reason === null ? 'received' : 'refused', reason });
+    if (reason !== null || known.has(finding.id)) continue;
+    known.add(finding.id);
+    const { readBy, notedAt, ...facts } = finding;
+    const personId = readBy ?? access.personId;
+    await VineFindingRecord.query(trx).insert({ ...facts, estateId: access.estateId, personId, typedBy: readBy === null ? null : access.personId, notedAt: new Date(notedAt), receivedAt: context.now });
+    await writeVines(trx, { estateId: access.estateId, blockId: finding.blockId }, [{ rowId: finding.rowId, ordinal: finding.ordinal, state: finding.state, proposed, notedBy: personId, notedAt: new Date(notedAt) }]);
+  }
+  return outcomes;
+}
+
+function refusalOf(finding: VineFinding, context: BatchContext): string | null {
+  if (context.rows.get(finding.rowId)?.blockId !== finding.blockId) return 'This row is not a row of the block.';
+  if (finding.roundId !== null && !context.rounds.has(finding.roundId)) return 'This round is not one of yours in this estate.';
+  if (context.ownRoundsOnly && finding.roundId === null) return 'Crew record within a round that was sent to them.';
+  return finding.readBy !== null && !context.readers.has(finding.readBy) ? 'Who found this is not somebody of this estate whose findings you may type.' : null;
+}

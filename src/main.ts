@@ -9,6 +9,7 @@ import { deviceLanguage, i18n, showLanguage } from './lib/i18n.ts';
 import { readStored } from './lib/deviceStore.ts';
 import type { Language } from './lib/format.ts';
 import { primeVueOptions } from './lib/theme.ts';
+import { totalWaiting } from './offline/waiting.ts';
 import { createAppRouter } from './router/index.ts';
 import { useContactStore } from './stores/contact.ts';
 import { useNoticesStore } from './stores/notices.ts';
@@ -42,7 +43,13 @@ async function start(): Promise<void> {
   app.mount('#app');
 
   watchForUpdate((load) => {
-    useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: load } });
+    // A new program takes over only an empty outbox: what waits was written by the old one, and goes with it.
+    const loadWhenSent = async (): Promise<void> => {
+      const waiting = session.person ? await totalWaiting(session.person.id) : 0;
+      if (waiting > 0) useNoticesStore().say(i18n.global.t('field.updateWaits', { n: waiting }, waiting), { kind: 'stop' });
+      else load();
+    };
+    useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: () => void loadWhenSent() } });
   });
 }
 

@@ -86,7 +86,7 @@ async function send(method: Method, path: string, { options, body }: Sending, re
   const problem = problemFrom(response.status, await response.json().catch(() => null));
   // A token from before a sign-in in another tab is refused: when the session has a newer one, ask once more.
   if (problem.status === 403 && method !== 'GET' && !retried && (await isTokenRenewed())) return send(method, path, { options, body }, true);
-  if (problem.status === 401 && path !== '/api/session') onSignedOut();
+  if (problem.status === 401 && path !== '/api/session' && path !== '/api/crew/session') onSignedOut();
   throw problem;
 }
 

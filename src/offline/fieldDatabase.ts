@@ -1,4 +1,5 @@
 import { openDB, type DBSchema, type IDBPDatabase } from 'idb';
+import type { BagOutcome, NewBag } from '../../shared/contracts/bags.ts';
 import type { NewReading, ReadingOutcome, VineFinding } from '../../shared/contracts/readings.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 
@@ -9,9 +10,11 @@ export interface Entry {
   readonly estateId: string;
   readonly personId: string;
   readonly roundId: string;
-  readonly kind: 'reading' | 'finding';
+  readonly kind: 'reading' | 'finding' | 'pick';
   readonly reading: EntryReading | null;
   readonly finding: VineFinding | null;
+  /** The vine whose fruit went into the open bag; it is sent with the bag. */
+  readonly pick?: { readonly targetId: string; readonly rowId: string; readonly ordinal: number };
   /** Words for lists, so that they can be drawn without the round. */
   readonly row: string;
   readonly vine: number;
@@ -19,9 +22,11 @@ export interface Entry {
   /** 0 while only on this phone, 1 once the server has answered for it: an index key, hence a number. */
   readonly received: 0 | 1;
   readonly outcome: ReadingOutcome | null;
+  /** True once it has left the phone, whether or not an answer came: from then on it can only be corrected. */
+  readonly isTried?: boolean;
 }
 
-export type EntryReading = Pick<NewReading, 'id' | 'blockId' | 'roundId' | 'targetId' | 'rowId' | 'ordinal' | 'measureCode' | 'value' | 'unit' | 'valueTyped' | 'takenAt' | 'deviceId' | 'supersedes' | 'flags'>;
+export type EntryReading = Pick<NewReading, 'id' | 'blockId' | 'roundId' | 'targetId' | 'rowId' | 'ordinal' | 'measureCode' | 'value' | 'unit' | 'valueTyped' | 'takenAt' | 'deviceId' | 'supersedes' | 'flags' | 'readBy' | 'seenAs'>;
 
 export interface KeptRound {
   readonly id: string;
@@ -31,10 +36,43 @@ export interface KeptRound {
   readonly keptAt: string;
 }
 
+/** A photo of a vine, made small and without its place on earth before it is kept. */
+export interface KeptPhoto {
+  readonly id: string;
+  readonly estateId: string;
+  readonly personId: string;
+  readonly roundId: string;
+  readonly blockId: string;
+  readonly rowId: string;
+  readonly ordinal: number;
+  readonly row: string;
+  readonly vine: number;
+  readonly note: string;
+  readonly picture: Blob;
+  readonly at: string;
+  readonly received: 0 | 1;
+}
+
+/** A bag closed with this phone. */
+export interface KeptBag {
+  readonly id: string;
+  readonly estateId: string;
+  readonly personId: string;
+  readonly roundId: string;
+  readonly zone: number;
+  readonly code: string;
+  readonly bag: NewBag;
+  readonly at: string;
+  readonly received: 0 | 1;
+  readonly outcome: BagOutcome | null;
+}
+
 interface FieldSchema extends DBSchema {
   rounds: { key: string; value: KeptRound; indexes: { person: string } };
   lists: { key: string; value: { key: string; items: RoundSummary[]; at: string } };
   entries: { key: string; value: Entry; indexes: { received: number; round: string } };
+  photos: { key: string; value: KeptPhoto; indexes: { received: number } };
+  bags: { key: string; value: KeptBag; indexes: { received: number; code: string } };
   facts: { key: string; value: { key: string; value: unknown } };
 }
 
@@ -44,8 +82,15 @@ let opened: Promise<FieldDatabase> | null = null;
 
 /** The phone's own store. One connection a page. */
 export function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
-  opened ??= openDB<FieldSchema>(name, 1, {
-    upgrade(database) {
+  opened ??= openDB<FieldSchema>(name, 2, {
+    upgrade(database, before) {
+      if (before < 2) {
+        database.createObjectStore('photos', { keyPath: 'id' }).createIndex('received', 'received');
+        const bags = database.createObjectStore('bags', { keyPath: 'id' });
+        bags.createIndex('received', 'received');
+        bags.createIndex('code', 'code');
+      }
+      if (before >= 1) return;
       database.createObjectStore('rounds', { keyPath: 'id' }).createIndex('person', 'personId');
       database.createObjectStore('lists', { keyPath: 'key' });
       const entries = database.createObjectStore('entries', { keyPath: 'id' });

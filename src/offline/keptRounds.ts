@@ -6,14 +6,17 @@ interface Owner {
   readonly personId: string;
 }
 
+/** People who share a phone each keep their own copy of a round. */
+const roundKey = ({ personId }: Owner, roundId: string) => `${personId}|${roundId}`;
+
 /** Puts a day's work on the phone. */
 export async function keepRound(owner: Owner, round: FieldRound, now: Date): Promise<void> {
   const database = await fieldDatabase();
-  await database.put('rounds', { id: round.id, ...owner, round: structuredClone(round), keptAt: now.toISOString() });
+  await database.put('rounds', { id: roundKey(owner, round.id), ...owner, round: structuredClone(round), keptAt: now.toISOString() });
 }
 
 export async function keptRound(owner: Owner, roundId: string): Promise<KeptRound | null> {
-  const kept = await (await fieldDatabase()).get('rounds', roundId);
+  const kept = await (await fieldDatabase()).get('rounds', roundKey(owner, roundId));
   return kept && kept.personId === owner.personId && kept.estateId === owner.estateId ? kept : null;
 }
 
@@ -21,8 +24,8 @@ export async function keptRound(owner: Owner, roundId: string): Promise<KeptRoun
 export async function dropOtherRounds(owner: Owner, keep: readonly string[]): Promise<void> {
   const database = await fieldDatabase();
   for (const kept of await database.getAllFromIndex('rounds', 'person', owner.personId)) {
-    if (kept.estateId !== owner.estateId || keep.includes(kept.id)) continue;
-    const waiting = (await database.getAllFromIndex('entries', 'round', kept.id)).some(({ received }) => received === 0);
+    if (kept.estateId !== owner.estateId || keep.includes(kept.round.id)) continue;
+    const waiting = (await database.getAllFromIndex('entries', 'round', kept.round.id)).some(({ received }) => received === 0);
     if (!waiting) await database.delete('rounds', kept.id);
   }
 }

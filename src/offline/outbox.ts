@@ -13,37 +13,43 @@ export async function addEntries(entries: readonly Entry[]): Promise<void> {
   await transaction.done;
 }
 
-/** Takes back what has not been sent. Answers false when the server has it already: then only a correction helps. */
+/** Takes back what never left the phone, or was refused. Answers false when the server may have it: then only a correction helps. */
 export async function takeBack(ids: readonly string[]): Promise<boolean> {
   const transaction = (await fieldDatabase()).transaction('entries', 'readwrite', { durability: 'strict' });
   const entries = await Promise.all(ids.map((id) => transaction.store.get(id)));
-  const isFree = entries.every((entry) => entry?.received === 0 && !inFlight.has(entry.id));
+  const isFree = entries.every((entry) => entry?.received === 0 && (!entry.isTried || entry.outcome?.state === 'refused'));
   if (isFree) await Promise.all(ids.map((id) => transaction.store.delete(id)));
   await transaction.done;
   return isFree;
 }
 
-export async function entriesOfRound(roundId: string): Promise<Entry[]> {
+export async function entriesOfRound(personId: string, roundId: string): Promise<Entry[]> {
   const entries = await (await fieldDatabase()).getAllFromIndex('entries', 'round', roundId);
-  return entries.sort((a, b) => a.at.localeCompare(b.at));
+  return entries.filter((entry) => entry.personId === personId).sort((a, b) => a.at.localeCompare(b.at));
 }
 
 export async function allEntries(personId: string): Promise<Entry[]> {
   const entries = await (await fieldDatabase()).getAll('entries');
-  return entries.filter((entry) => entry.personId === personId).sort((a, b) => b.at.localeCompare(a.at));
+  return entries.filter((entry) => entry.personId === personId && entry.kind !== 'pick').sort((a, b) => b.at.localeCompare(a.at));
+}
+
+/** Of others who share this phone: how much of theirs waits until they sign in here. */
+export async function waitingOfOthers(personId: string): Promise<number> {
+  return (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.kind !== 'pick' && entry.personId !== personId && entry.outcome?.state !== 'refused').length;
 }
 
 /** What has not reached the server yet; what it refused is told apart and does not count. */
 export async function countWaiting(personId: string): Promise<number> {
-  return (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.personId === personId && entry.outcome?.state !== 'refused').length;
+  return (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.kind !== 'pick' && entry.personId === personId && entry.outcome?.state !== 'refused').length;
 }
 
-const inFlight = new Set<string>();
 let sending: Promise<SendResult> | null = null;
 
 export interface SendResult {
   readonly sent: number;
   readonly reached: boolean;
+  /** The phone's clock less the server's, in milliseconds, from the last answer. */
+  readonly clockOffMs: number | null;
 }
 
 /**
@@ -57,24 +63,35 @@ export function sendWaiting(personId: string, now: () => Date): Promise<SendResu
 
 async function sendAll(personId: string, now: () => Date): Promise<SendResult> {
   let sent = 0;
+  let clockOffMs: number | null = null;
   // What the server refuses stays on the phone with its reason and is offered again next time, not in this run.
   const tried = new Set<string>();
   for (;;) {
-    const waiting = (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.personId === personId && !tried.has(entry.id)).sort((a, b) => a.at.localeCompare(b.at));
+    const waiting = (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.kind !== 'pick' && entry.personId === personId && !tried.has(entry.id)).sort((a, b) => a.at.localeCompare(b.at));
     const estateId = waiting[0]?.estateId;
-    if (estateId === undefined) return { sent, reached: true };
-    const batch = waiting.filter((entry) => entry.estateId === estateId).slice(0, batchSize);
-    batch.forEach(({ id }) => inFlight.add(id));
+    if (estateId === undefined) return { sent, reached: true, clockOffMs };
+    const wanted = waiting.filter((entry) => entry.estateId === estateId).slice(0, batchSize);
+    wanted.forEach(({ id }) => tried.add(id));
+    const batch = await markTried(wanted);
+    if (batch.length === 0) continue;
     try {
-      sent += await settle(batch, await post(estateId, batch, now()));
-      batch.forEach(({ id }) => tried.add(id));
+      const answer = await post(estateId, batch, now());
+      clockOffMs = now().getTime() - Date.parse(answer.serverTime);
+      sent += await settle(batch, answer);
     } catch (error) {
-      if (error instanceof HttpProblem) return { sent, reached: !error.isOffline };
+      if (error instanceof HttpProblem) return { sent, reached: !error.isOffline, clockOffMs };
       throw error;
-    } finally {
-      batch.forEach(({ id }) => inFlight.delete(id));
     }
   }
+}
+
+/** Noted before it leaves, since an answer may be lost on the way back. What was taken back meanwhile does not go. */
+async function markTried(batch: readonly Entry[]): Promise<Entry[]> {
+  const transaction = (await fieldDatabase()).transaction('entries', 'readwrite', { durability: 'strict' });
+  const stored = (await Promise.all(batch.map(({ id }) => transaction.store.get(id)))).filter((entry) => entry !== undefined);
+  for (const entry of stored) if (!entry.isTried) void transaction.store.put({ ...entry, isTried: true });
+  await transaction.done;
+  return stored;
 }
 
 function post(estateId: string, batch: readonly Entry[], now: Date): Promise<BatchAnswer> {
@@ -93,7 +110,7 @@ async function settle(batch: readonly Entry[], answer: BatchAnswer): Promise<num
     if (!outcome) continue;
     const isStored = outcome.state !== 'refused';
     if (isStored) received++;
-    void transaction.store.put({ ...entry, received: isStored ? 1 : 0, outcome });
+    void transaction.store.put({ ...entry, received: isStored ? 1 : 0, isTried: true, outcome });
   }
   await transaction.done;
   return received;

@@ -15,9 +15,8 @@ export interface RoutePlace {
 /** Every place of the product: a wrong name does not compile. Estate places carry the estate's id, so that links in mails hold. */
 export const routePlaces = {
   signIn: { path: '/sign-in', frame: 'door' },
+  crewDoor: { path: '/crew', frame: 'door' },
   join: { path: '/join/:token', frame: 'door' },
-  forgotten: { path: '/forgotten', frame: 'door' },
-  reset: { path: '/reset/:token', frame: 'door' },
   home: { path: '/', frame: 'door' },
   today: { path: '/e/:estateId/today', frame: 'office' },
   estate: { path: '/e/:estateId/estate', frame: 'office' },
@@ -35,6 +34,8 @@ export const routePlaces = {
   planNew: { path: '/e/:estateId/zonings/:zoningId/plan', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   targets: { path: '/e/:estateId/plans/:planId/targets', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   sheets: { path: '/e/:estateId/rounds/:roundId/sheet', frame: 'office', needs: ['sheets.print', 'own'], under: 'sampling' },
+  paper: { path: '/e/:estateId/rounds/:roundId/paper', frame: 'office', needs: ['readings.record', 'do'], under: 'sampling' },
+  conflicts: { path: '/e/:estateId/conflicts', frame: 'office', needs: ['conflicts.settle', 'own'], under: 'sampling' },
   restrictions: { path: '/e/:estateId/restrictions', frame: 'office', needs: ['restrictions.see', 'read'], under: 'sampling' },
   lab: { path: '/e/:estateId/lab', frame: 'office', needs: ['lab.enter', 'propose'] },
   ripeness: { path: '/e/:estateId/ripeness', frame: 'office', needs: ['results.see', 'read'] },
@@ -49,10 +50,10 @@ export const routePlaces = {
   history: { path: '/e/:estateId/history', frame: 'office', needs: ['audit.see', 'read'] },
   help: { path: '/e/:estateId/help', frame: 'office' },
   account: { path: '/account', frame: 'office' },
-  estateNew: { path: '/estates/new', frame: 'office' },
   fieldWork: { path: '/e/:estateId/field', frame: 'field', needs: ['readings.record', 'own'] },
   fieldWalk: { path: '/e/:estateId/field/rounds/:roundId', frame: 'field', needs: ['readings.record', 'own'] },
   fieldBag: { path: '/e/:estateId/field/rounds/:roundId/bag', frame: 'field', needs: ['readings.record', 'own'] },
+  fieldConflicts: { path: '/e/:estateId/field/conflicts', frame: 'field', needs: ['conflicts.settle', 'own'] },
   fieldOutbox: { path: '/e/:estateId/field/outbox', frame: 'field', needs: ['readings.record', 'own'] },
   notFound: { path: '/:rest(.*)*', frame: 'door' },
 } as const satisfies Record<string, { path: string; frame: Frame; needs?: readonly [Permission, Reach]; under?: string }>;

@@ -1,13 +1,20 @@
 import { defineStore } from 'pinia';
 import { ref, shallowRef } from 'vue';
+import type { PhoneAnswer } from '../../shared/contracts/phones.ts';
 import type { VineState } from '../../shared/contracts/rows.ts';
 import type { FieldMeasure, FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/rounds.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
+import { sendBags } from '../offline/bagBox.ts';
 import { deviceId } from '../offline/deviceId.ts';
 import type { Entry } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
-import { addEntries, allEntries, countWaiting, entriesOfRound, sendWaiting, takeBack } from '../offline/outbox.ts';
+import { emptyPhone } from '../offline/emptyPhone.ts';
+import { addEntries, allEntries, entriesOfRound, sendWaiting, takeBack, waitingOfOthers } from '../offline/outbox.ts';
+import { addPhoto, sendPhotos } from '../offline/photoBox.ts';
+import { totalWaiting } from '../offline/waiting.ts';
+
+const clockToleranceMs = 5 * 60_000;
 
 interface Owner {
   estateId: string;
@@ -31,9 +38,15 @@ export const useFieldStore = defineStore('field', () => {
   const entries = shallowRef<readonly Entry[]>([]);
   const all = shallowRef<readonly Entry[]>([]);
   const waiting = ref(0);
+  const others = ref(0);
   const isSending = ref(false);
+  /** Minutes by which this phone's clock is off, when it is more than the five that are let pass. */
+  const clockOffMin = ref<number | null>(null);
+  /** This phone was reported lost and holds nothing any more. */
+  const isEmptied = ref(false);
+  const isReady = ref<boolean | null>(null);
   let owner: Owner = { estateId: '', personId: '' };
-
+  let checkedIn = { state: '', at: 0 };
 
   async function begin(estateId: string, personId: string): Promise<void> {
     owner = { estateId, personId };
@@ -41,9 +54,10 @@ export const useFieldStore = defineStore('field', () => {
   }
 
   async function count(): Promise<void> {
-    waiting.value = await countWaiting(owner.personId);
+    waiting.value = await totalWaiting(owner.personId);
+    others.value = await waitingOfOthers(owner.personId);
     all.value = await allEntries(owner.personId);
-    if (round.value) entries.value = await entriesOfRound(round.value.id);
+    if (round.value) entries.value = await entriesOfRound(owner.personId, round.value.id);
   }
 
   /** What the phone holds first; then, when the server answers, the newest, with each round of one's own put on the phone. */
@@ -70,7 +84,7 @@ export const useFieldStore = defineStore('field', () => {
     if (!found) return false;
     if (!kept) await keepRound(owner, found, new Date());
     round.value = found;
-    entries.value = await entriesOfRound(roundId);
+    entries.value = await entriesOfRound(owner.personId, roundId);
     return true;
   }
 
@@ -89,15 +103,15 @@ export const useFieldStore = defineStore('field', () => {
     return { id: crypto.randomUUID(), ...owner, roundId: round.value!.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
   }
 
-  /** Writes a value to the phone; it is safe when this resolves. Sending goes on by itself. */
-  async function record(stop: WalkStop, vine: VineAtStop, typed: { measure: FieldMeasure; text: string; value: number; isOdd: boolean; supersedes: string | null }): Promise<void> {
+  /** Writes a value to the phone; it is safe when this resolves. Sending goes on by itself. `readBy`: a colleague who walks with this phone. */
+  async function record(stop: WalkStop, vine: VineAtStop, typed: { measure: FieldMeasure; text: string; value: number; isOdd: boolean; supersedes: string | null; readBy: string | null }): Promise<void> {
     const head = entryOf(stop, vine);
     const flags = [...(typed.isOdd ? (['odd'] as const) : []), ...(vine.isReserve ? (['reserve'] as const) : [])];
     await addEntries([{
       ...head, kind: 'reading', finding: null,
       reading: {
         id: head.id, blockId: round.value!.blockId, roundId: round.value!.id, targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal, measureCode: typed.measure.code,
-        value: typed.value, unit: typed.measure.unit, valueTyped: typed.text, takenAt: head.at, deviceId: deviceId(), supersedes: typed.supersedes, flags,
+        value: typed.value, unit: typed.measure.unit, valueTyped: typed.text, takenAt: head.at, deviceId: deviceId(), supersedes: typed.supersedes, flags, readBy: typed.readBy, seenAs: { row: vine.rowLabel, vine: vine.vineNumber },
       },
     }]);
     await count();
@@ -105,11 +119,17 @@ export const useFieldStore = defineStore('field', () => {
   }
 
   /** Notes what stands in the target's place: a proposal for the census, and the reserve takes over. */
-  async function find(stop: WalkStop, vine: VineAtStop, state: VineState): Promise<void> {
+  async function find(stop: WalkStop, vine: VineAtStop, { state, readBy }: { state: VineState; readBy: string | null }): Promise<void> {
     const head = entryOf(stop, vine);
-    await addEntries([{ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at } }]);
+    await addEntries([{ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at, deviceId: deviceId(), readBy } }]);
     await count();
     void send();
+  }
+
+  /** Notes that fruit of the vine went into the open bag. */
+  async function pick(stop: WalkStop, vine: VineAtStop): Promise<void> {
+    await addEntries([{ ...entryOf(stop, vine), kind: 'pick', reading: null, finding: null, pick: { targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal } }]);
+    await count();
   }
 
   /** Takes the last entry back if it is only on this phone. */
@@ -119,19 +139,59 @@ export const useFieldStore = defineStore('field', () => {
     return isBack;
   }
 
+  /** Keeps a photo of the vine with a note on the phone. */
+  async function photograph(stop: WalkStop, vine: VineAtStop, { picture, note }: { picture: Blob; note: string }): Promise<void> {
+    const { id, row, at, estateId, personId, roundId } = entryOf(stop, vine);
+    await addPhoto({ id, estateId, personId, roundId, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, row, vine: vine.vineNumber, note, picture, at, received: 0 });
+    await count();
+    void send();
+  }
+
   async function send(): Promise<void> {
     if (owner.personId === '') return;
     isSending.value = true;
     try {
-      await sendWaiting(owner.personId, () => new Date());
+      const { reached, clockOffMs } = await sendWaiting(owner.personId, () => new Date());
+      if (clockOffMs !== null) clockOffMin.value = Math.abs(clockOffMs) > clockToleranceMs ? Math.round(clockOffMs / 60_000) : null;
+      if (reached) await sendBags(owner.personId, () => new Date());
+      if (reached) await sendPhotos(owner.personId);
     } finally {
       isSending.value = false;
       await count();
     }
+    await checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, isSending, begin, count, loadWork, openRound, refreshRound, setState, record, find, undo, send };
+  /** Tells the office how this phone stands, at most once a minute; a phone that was reported lost empties itself once all is received. */
+  async function checkIn(): Promise<void> {
+    const state = `${waiting.value} ${isReady.value}`;
+    if (owner.estateId === '' || (state === checkedIn.state && Date.now() - checkedIn.at < 60_000)) return;
+    const facts = { deviceId: deviceId(), waiting: waiting.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
+    const answer = await unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts));
+    if (!answer) return;
+    checkedIn = { state, at: Date.now() };
+    if (!answer.isLost || facts.waiting > 0) return;
+    await emptyPhone();
+    isEmptied.value = true;
+  }
+
+  function noteReady(ready: boolean): void {
+    isReady.value = ready;
+    void checkIn();
+  }
+
+  return { rounds, listedAt, round, entries, all, waiting, others, isSending, clockOffMin, isEmptied, begin, count, loadWork, openRound, refreshRound, setState, record, find, pick, undo, photograph, send, noteReady };
 });
+
+/** Null when there is no signal or the server declines: how a phone stands is never in the way of work. */
+async function unlessRefused<T>(ask: () => Promise<T>): Promise<T | null> {
+  try {
+    return await ask();
+  } catch (error) {
+    if (error instanceof HttpProblem) return null;
+    throw error;
+  }
+}
 
 /** Null when there is no signal; what the server refuses is thrown on. */
 async function unlessOffline<T>(ask: () => Promise<T>): Promise<T | null> {

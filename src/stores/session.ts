@@ -3,6 +3,7 @@ import { computed, ref, shallowRef } from 'vue';
 import type { z } from 'zod';
 import { may, type Permission, type Reach } from '../../shared/catalog/permissions.ts';
 import type { invitationAnswer } from '../../shared/contracts/people.ts';
+import type { CrewOffer } from '../../shared/contracts/phones.ts';
 import type { personChange, Session, SessionEstate } from '../../shared/contracts/session.ts';
 import { readStored, writeStored } from '../lib/deviceStore.ts';
 import { http, setCsrfToken } from '../lib/http.ts';
@@ -54,6 +55,12 @@ export const useSessionStore = defineStore('session', () => {
     take(await http.post<Session>('/api/session', { email, password }));
   }
 
+  const crewOffer = (code: string) => http.post<CrewOffer>('/api/crew/people', { code });
+
+  async function signInWithPin(typed: { code: string; personId: string; pin: string }): Promise<void> {
+    take(await http.post<Session>('/api/crew/session', typed));
+  }
+
   async function signOut(): Promise<void> {
     await http.delete('/api/session');
     await load();
@@ -78,5 +85,5 @@ export const useSessionStore = defineStore('session', () => {
     session.value = { ...nobody, csrfToken: session.value.csrfToken, demo: session.value.demo };
   }
 
-  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, recall, signIn, signOut, acceptInvitation, changePerson, chooseEstate, forget };
+  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, recall, signIn, crewOffer, signInWithPin, signOut, acceptInvitation, changePerson, chooseEstate, forget };
 });

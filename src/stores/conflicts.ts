@@ -1,0 +1,10 @@
+import { defineStore } from 'pinia';
+import type { ConflictAnswer, ConflictList } from '../../shared/contracts/conflicts.ts';
+import { http } from '../lib/http.ts';
+
+/** Records that disagree, and what people said about them. */
+export const useConflictsStore = defineStore('conflicts', () => {
+  const list = (estateId: string) => http.get<ConflictList>(`/api/estates/${estateId}/conflicts`);
+  const settle = (estateId: string, conflictId: string, choice: ConflictAnswer, keptReadingId: string | null) => http.post(`/api/estates/${estateId}/conflicts/${conflictId}/settle`, { choice, keptReadingId });
+  return { list, settle };
+});

@@ -1,0 +1,54 @@
+import { defineStore } from 'pinia';
+import { shallowRef } from 'vue';
+import type { BagLine, NewBag } from '../../shared/contracts/bags.ts';
+import { http } from '../lib/http.ts';
+import { HttpProblem } from '../lib/httpProblem.ts';
+import { addBag, bagsOfRound, sendBags } from '../offline/bagBox.ts';
+import { deviceId } from '../offline/deviceId.ts';
+import type { KeptBag } from '../offline/fieldDatabase.ts';
+
+/** Where a label is bound already, as far as this phone knows. */
+export interface LabelUse {
+  readonly row: string | null;
+  readonly person: string | null;
+  readonly at: string | null;
+}
+
+/** Bags as they are closed in the row. */
+export const useFieldBagsStore = defineStore('fieldBags', () => {
+  const bags = shallowRef<readonly KeptBag[]>([]);
+  /** Labels of the round that other phones had bound when the server was last asked. */
+  const others = shallowRef<readonly BagLine[]>([]);
+
+  async function load(estateId: string, roundId: string): Promise<void> {
+    bags.value = await bagsOfRound(roundId);
+    try {
+      others.value = (await http.get<{ items: BagLine[] }>(`/api/estates/${estateId}/bags`, { query: { round: roundId } })).items;
+    } catch (error) {
+      // Without signal the phone's own bags have to do; what another phone bound shows when both have sent.
+      if (!(error instanceof HttpProblem)) throw error;
+    }
+  }
+
+  function usedBy(code: string): LabelUse | null {
+    const other = others.value.find((line) => line.code === code && line.place !== 'void' && line.closedAt !== null);
+    return other ? { row: other.rowLabel, person: other.holder, at: other.closedAt } : null;
+  }
+
+  /** Keeps a closed bag on the phone and sends it when it can. Answers where the label is bound already, if it is. */
+  async function close(owner: { estateId: string; personId: string; roundId: string }, closed: Pick<NewBag, 'code' | 'blockId' | 'vines' | 'berries' | 'sunSide' | 'shadeSide' | 'wet' | 'rotPercent' | 'note'> & { zone: number }): Promise<LabelUse | null> {
+    const known = usedBy(closed.code);
+    if (known && !bags.value.some(({ code }) => code === closed.code)) return known;
+    const { zone, ...facts } = closed;
+    const [id, at] = [crypto.randomUUID(), new Date().toISOString()];
+    const bag: NewBag = { ...facts, id, state: 'closed', roundId: owner.roundId, zoneId: null, closedAt: at, deviceTime: null, deviceId: deviceId() };
+    const holder = await addBag({ ...owner, id, zone, code: closed.code, bag, at, received: 0, outcome: null });
+    bags.value = await bagsOfRound(owner.roundId);
+    if (holder) return { row: null, person: null, at: holder.at };
+    await sendBags(owner.personId, () => new Date());
+    bags.value = await bagsOfRound(owner.roundId);
+    return null;
+  }
+
+  return { bags, load, close };
+});

@@ -1,0 +1,43 @@
+import { describe, expect, it } from 'vitest';
+import { emptyDraft, paperBatch, retyped, vineOfLine, type PaperDraft } from '../../src/components/field/paperDraft.ts';
+import type { FieldRound } from '../../shared/contracts/rounds.ts';
+
+const round = {
+  id: 'round', blockId: 'block', received: [],
+  measures: [{ code: 'clusterCount', unit: 'clusters', decimals: 0, minimum: 0, maximum: 150, measuredIn: 'field' }],
+  stops: [1, 2].map((number) => ({ targetId: `t${number}`, number, rowId: 'row', rowLabel: '4', ordinal: number, vineNumber: number, measures: ['clusterCount'], reserve: { rowId: 'row', rowLabel: '4', ordinal: number + 50, vineNumber: number + 50 } })),
+} as unknown as FieldRound;
+const sheet = { personId: 'ana', takenAt: '2026-09-01T08:00:00Z' };
+const typed = (draft: PaperDraft, target: string, text: string): PaperDraft => ({ ...draft, [target]: { ...draft[target]!, cells: { clusterCount: retyped(draft[target]!.cells.clusterCount!, text) } } });
+
+describe('a sheet that is typed', () => {
+  it('sends what stands in the boxes, in the name of who walked; an empty box is not nought', () => {
+    const { readings } = paperBatch(round, typed(typed(emptyDraft(round), 't1', '0'), 't2', ''), sheet);
+    expect(readings).toMatchObject([{ targetId: 't1', value: 0, source: 'paper', readBy: 'ana', seenAs: { row: '4', vine: 1 }, flags: [] }]);
+  });
+
+  it('takes a decimal comma, marks the unusual and leaves out what is no number', () => {
+    expect(paperBatch(round, typed(emptyDraft(round), 't1', '12,5'), sheet).readings[0]!.value).toBe(12.5);
+    expect(paperBatch(round, typed(emptyDraft(round), 't1', '400'), sheet).readings[0]!.flags).toEqual(['odd']);
+    expect(paperBatch(round, typed(emptyDraft(round), 't1', 'many'), sheet).readings).toEqual([]);
+  });
+
+  it('keeps the id of a box until it is saved, and corrects after that', () => {
+    const draft = typed(typed(emptyDraft(round), 't1', '2'), 't1', '21');
+    const cell = draft.t1!.cells.clusterCount!;
+    expect(cell.id).toBe(paperBatch(round, draft, sheet).readings[0]!.id);
+    const saved = { ...cell, outcome: { id: cell.id, state: 'received' as const, reason: null } };
+    expect(retyped(saved, '21')).toEqual(saved);
+    expect(retyped(saved, '22')).toMatchObject({ text: '22', supersedes: cell.id, outcome: null });
+    expect(retyped({ ...saved, outcome: { id: cell.id, state: 'refused', reason: 'x' } }, '22').id).toBe(cell.id);
+  });
+
+  it('reads the reserve where something else stands, and none where both are gone', () => {
+    const draft = typed(emptyDraft(round), 't1', '9');
+    const gone: PaperDraft = { ...draft, t1: { ...draft.t1!, states: ['missing', ''] } };
+    expect(paperBatch(round, gone, sheet)).toMatchObject({ readings: [{ ordinal: 51, flags: ['reserve'] }], findings: [{ ordinal: 1, state: 'missing', readBy: 'ana' }] });
+    const both: PaperDraft = { ...draft, t1: { ...draft.t1!, states: ['missing', 'dead'] } };
+    expect(vineOfLine(round.stops[0]!, both.t1!)).toBeNull();
+    expect(paperBatch(round, both, sheet)).toMatchObject({ readings: [], findings: [{ ordinal: 1 }, { ordinal: 51, state: 'dead' }] });
+  });
+});

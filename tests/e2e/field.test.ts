@@ -1,0 +1,202 @@
+import AxeBuilder from '@axe-core/playwright';
+import type { BrowserContext, Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import type { ConflictList } from '../../shared/contracts/conflicts.ts';
+import type { PlanList } from '../../shared/contracts/plans.ts';
+import type { ReadingView } from '../../shared/contracts/readings.ts';
+import { startApplication, type Application } from './support/application.ts';
+import { heldBy, keyIn, openOffice, openPhone, recordMany, startWalk, type Office } from './support/fieldPhones.ts';
+
+const names = ['Ana Reed', 'Ben Moor', 'Cleo Lane'];
+const pin = '4711';
+
+let app: Application;
+let office: Office;
+let roundId: string;
+let code: string;
+const phones: { page: Page; context: BrowserContext }[] = [];
+let cleo: Awaited<ReturnType<typeof heldBy>>;
+
+beforeAll(async () => {
+  app = await startApplication();
+  office = await openOffice(app, 'manager');
+  code = (await office.post<{ code: string }>('/crew-code')).code;
+  const people = [];
+  for (const name of names) people.push((await office.post<{ id: string }>('/crew', { name, pin })).id);
+  const { zonings } = await office.get<PlanList>('/plans');
+  const zoning = zonings.find(({ blockName }) => /Furrow/.test(blockName)) ?? zonings[0]!;
+  const measures = ['clusterCount', 'pruningWeight'].map((measure) => ({ code: measure, margin: 0.08, marginKind: 'relative', confidence: 0.95 }));
+  const plan = await office.post<{ id: string }>(`/zonings/${zoning.id}/plans`, { name: 'Whole day', measures, seed: 4 });
+  await office.post(`/plans/${plan.id}/lock`);
+  roundId = (await office.post<{ id: string }>(`/plans/${plan.id}/rounds`, { onDate: new Date().toISOString().slice(0, 10), people })).id;
+}, 600_000);
+afterAll(() => app?.close());
+
+const readings = async (): Promise<ReadingView[]> => {
+  const all: ReadingView[] = [];
+  for (let after: string | null = ''; after !== null; ) {
+    const page: { items: ReadingView[]; next: string | null } = await office.get(`/readings?round=${roundId}${after ? `&after=${encodeURIComponent(after)}` : ''}`);
+    all.push(...page.items);
+    after = page.next;
+  }
+  return all;
+};
+
+describe('a day of three phones without signal, one of which is lost', () => {
+  it('three people sign in with code, name and PIN, and their phones are ready for the row', async () => {
+    for (const name of names) phones.push(await openPhone(app, { code, name, pin }));
+    const { violations } = await new AxeBuilder({ page: phones[0]!.page }).analyze();
+    expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id }) => id)).toEqual([]);
+  });
+
+  it('Ana types by taps without signal: a value, an odd one kept by two taps, a missing vine and its reserve, an undo', async () => {
+    const [{ page, context }] = phones as [(typeof phones)[number]];
+    await startWalk(page);
+    await context.setOffline(true);
+    await keyIn(page, 24);
+    await keyIn(page, 0.62);
+    await keyIn(page, 999);
+    await page.getByRole('button', { name: 'Yes, keep it' }).tap();
+    await keyIn(page, 0.7);
+    await page.getByRole('button', { name: 'Not this vine' }).tap();
+    await page.getByRole('button', { name: 'Nothing, missing vine' }).tap();
+    await page.getByText('Reserve vine').waitFor();
+    await keyIn(page, 33);
+    await page.getByRole('button', { name: 'Undo' }).tap();
+    await page.getByText('Reserve vine').waitFor();
+    await keyIn(page, 31);
+    expect((await heldBy(page)).readings.map(({ value }) => value)).toEqual([24, 0.62, 999, 0.7, 31]);
+    const keys = await page.locator('.pad button').evaluateAll((buttons) => buttons.map((button) => Math.min(button.getBoundingClientRect().width, button.getBoundingClientRect().height)));
+    expect(Math.min(...keys)).toBeGreaterThanOrEqual(64);
+  });
+
+  it('the browser is started again in the middle, without signal, and nothing is gone', async () => {
+    const [{ page }] = phones as [(typeof phones)[number]];
+    await recordMany(page, 30);
+    const before = await heldBy(page);
+    await page.reload();
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    const after = await heldBy(page);
+    expect(after.readings).toEqual(before.readings);
+    expect(after.waiting).toBe(before.waiting);
+    await recordMany(page, 1000);
+    await expect.poll(() => page.getByText('The walk is done.').count()).toBe(1);
+    await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
+    await page.getByText('You cannot sign out yet.').waitFor();
+  });
+
+  it('Ben walks his vines and, without knowing it, three of Ana’s', async () => {
+    const { page, context } = phones[1]!;
+    await startWalk(page);
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    await context.setOffline(true);
+    await recordMany(page, 1000);
+    expect(await recordMany(page, 6, { others: true })).toBe(6);
+  });
+
+  it('Cleo’s phone sends half of her walk and is never seen again', async () => {
+    const { page, context } = phones[2]!;
+    await startWalk(page);
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    await recordMany(page, 20);
+    await expect.poll(async () => (await heldBy(page)).waiting).toBe(0);
+    await context.setOffline(true);
+    await recordMany(page, 1000);
+    cleo = await heldBy(page);
+    expect(cleo.waiting).toBe(cleo.readings.length - 20);
+    await context.close();
+  });
+
+  it('the network breaks while Ana sends, and one batch arrives five times more', async () => {
+    const { page, context } = phones[0]!;
+    const batches: string[] = [];
+    let cuts = 0;
+    await context.route('**/api/estates/*/readings', async (route) => {
+      if (route.request().method() !== 'POST') return route.continue();
+      batches.push(route.request().postData()!);
+      if (cuts++ > 1) return route.continue();
+      // The first two sendings arrive, but their answers are lost on the way back.
+      await route.fetch();
+      return route.abort('connectionreset');
+    });
+    await context.setOffline(false);
+    for (let i = 0; i < 5; i++) {
+      await page.evaluate(() => window.dispatchEvent(new Event('online')));
+      if (await page.getByText('Nothing waits on this phone.').waitFor({ timeout: 2500 }).then(() => true, () => false)) break;
+    }
+    await page.getByText('Nothing waits on this phone.').waitFor();
+    expect(cuts).toBeGreaterThan(2);
+    const states = await page.evaluate(async (body) => {
+      const { csrfToken } = (await (await fetch('/api/session')).json()) as { csrfToken: string };
+      const address = location.pathname.replace(/^\/e\/([^/]+)\/.*/, '/api/estates/$1/readings');
+      const answers = await Promise.all(Array.from({ length: 5 }, () => fetch(address, { method: 'POST', body, headers: { 'content-type': 'application/json', 'x-csrf-token': csrfToken } })));
+      return Promise.all(answers.map(async (answer) => ((await answer.json()) as { outcomes: { state: string }[] }).outcomes.map(({ state }) => state)));
+    }, batches[0]!);
+    expect(states).toHaveLength(5);
+    expect(new Set(states.flat())).toEqual(new Set(['received']));
+    await context.unroute('**/api/estates/*/readings');
+  });
+
+  it('Ben’s phone sends the rest when it finds the network, and says which vines somebody else had read', async () => {
+    const { page, context } = phones[1]!;
+    await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
+    await context.setOffline(false);
+    await page.evaluate(() => window.dispatchEvent(new Event('online')));
+    await page.getByText('Nothing waits on this phone.').waitFor();
+    expect(await page.getByText('Somebody else read this vine too. Both are kept.').count()).toBe(6);
+    await page.getByRole('link', { name: 'See what was read twice' }).tap();
+    await page.getByText('6 conflicts to settle.').waitFor();
+    expect(await page.getByText('The manager decides.').count()).toBe(6);
+  });
+
+  it('Cleo’s sheet is typed in the office by keyboard, one value of it otherwise than her phone had sent', async () => {
+    const { page } = office;
+    await page.goto(`${app.url}/e/${office.estateId}/rounds/${roundId}/paper`);
+    await page.getByText(names[2]!, { exact: true }).click();
+    await page.getByText(/received already/).first().waitFor();
+    const value = (targetId: string, measureCode: string) => cleo.readings.find((reading) => reading.targetId === targetId && reading.measureCode === measureCode)!.value;
+    for (const measure of ['clusterCount', 'pruningWeight']) {
+      await page.locator(`input[data-place="0 ${measure}"]`).focus();
+      for (const stop of cleo.round.stops) {
+        await page.keyboard.insertText(String(value(stop.targetId, measure) + (stop === cleo.round.stops[1] && measure === 'clusterCount' ? 5 : 0)));
+        await page.keyboard.press('Enter');
+      }
+    }
+    await page.getByRole('button', { name: 'Save the sheet' }).click();
+    await page.getByText('1 differs: see the card').waitFor();
+    // Opened anew, the sheet knows what was saved, and offers nothing to save twice.
+    await page.reload();
+    await page.getByText(names[2]!, { exact: true }).click();
+    await page.getByText('Nothing new to save').waitFor();
+    expect(await page.locator('input[data-place="0 clusterCount"]').inputValue()).toBe(String(value(cleo.round.stops[0]!.targetId, 'clusterCount')));
+  });
+
+  it('every reading is there exactly once, and what differs is listed', async () => {
+    const all = await readings();
+    const vines = cleo.round.people.reduce((sum, person) => sum + person.vines, 0);
+    const expected = 2 * vines + 6 + 1;
+    expect(vines * 2).toBeGreaterThanOrEqual(200);
+    expect(all.filter(({ excludedReason }) => excludedReason === null)).toHaveLength(expected);
+    const key = ({ person, rowId, ordinal, measureCode, value }: ReadingView) => [person, rowId, ordinal, measureCode, value].join();
+    expect(new Set(all.map(key)).size).toBe(all.length);
+    expect(new Set(all.map(({ person }) => person))).toEqual(new Set(names));
+    const { open, items } = await office.get<ConflictList>('/conflicts');
+    expect(open).toBe(7);
+    // Ana read the reserve of her third vine, which she found missing; Ben read what he found there.
+    expect(items.map(({ kind }) => kind).sort()).toEqual(['sameTarget', ...Array.from({ length: 6 }, () => 'sameVine')]);
+    expect(items.every(({ readings: both }) => both.length === 2)).toBe(true);
+  });
+
+  it('the manager settles a card on the screen, and the choice is in the history', async () => {
+    const { page } = office;
+    await page.goto(`${app.url}/e/${office.estateId}/conflicts`);
+    const card = page.getByRole('article').first();
+    await card.getByRole('button', { name: 'Keep this one' }).first().click();
+    await page.getByText('6 conflicts to settle.').waitFor();
+    await page.getByText('one kept, the others left out').waitFor();
+    const { violations } = await new AxeBuilder({ page }).analyze();
+    expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id }) => id)).toEqual([]);
+    const { items } = await office.get<{ items: { action: string }[] }>('/audit');
+    expect(items.map(({ action }) => action)).toContain('conflicts.settle');
+  });
+});

@@ -1,6 +1,6 @@
 import compression from 'compression';
 import connectPgSimple from 'connect-pg-simple';
-import express, { Router, type ErrorRequestHandler, type Express } from 'express';
+import express, { Router, type ErrorRequestHandler, type Express, type Request } from 'express';
 import session from 'express-session';
 import helmet from 'helmet';
 import { existsSync } from 'node:fs';
@@ -13,6 +13,7 @@ import type { Config } from './config.ts';
 import { Missing, problemOf } from './errors.ts';
 import { log } from './log.ts';
 import { bagRoutes } from './routes/bags.ts';
+import { accountRoutes } from './routes/account.ts';
 import { blockRoutes } from './routes/blocks.ts';
 import { crewDoorRoutes } from './routes/crewDoor.ts';
 import { crewRoutes } from './routes/crew.ts';
@@ -33,12 +34,14 @@ import { recordRoutes } from './routes/records.ts';
 import { restrictionRoutes } from './routes/restrictions.ts';
 import { roundRoutes } from './routes/rounds.ts';
 import { sessionRoutes } from './routes/session.ts';
+import { searchRoutes } from './routes/search.ts';
+import { todayRoutes } from './routes/today.ts';
 import { zoningRoutes } from './routes/zonings.ts';
+import { sessionMs } from './services/account/openSessions.ts';
 import { receiveFiles } from './storage/uploads.ts';
 
 /** A phone sends some 300 KB; a camera's original fits too. */
 const photoLimitBytes = 15 * 2 ** 20;
-const weekMs = 7 * 86_400_000;
 
 export interface AppParts {
   isReady: () => Promise<boolean>;
@@ -80,13 +83,14 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
       resave: false,
       saveUninitialized: false,
       rolling: true,
-      cookie: { httpOnly: true, sameSite: 'lax', secure: config.production && config.trustProxy > 0 ? true : 'auto', maxAge: weekMs },
+      cookie: { httpOnly: true, sameSite: 'lax', secure: config.production && config.trustProxy > 0 ? true : 'auto', maxAge: sessionMs },
     }),
   );
   api.use(passport.session());
   api.use(csrf.protect);
   api.get('/openapi.json', (_request, response) => void response.json(describedApi()));
   api.use(sessionRoutes({ passport, csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
+  api.use(accountRoutes({ demo: config.demo, signInTries: config.signInTries, trustedUrl: (request) => trustedUrl(config, request) }));
   api.use(crewDoorRoutes({ csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
   api.use(estateListRoutes());
   api.use(formatRoutes());
@@ -104,7 +108,17 @@ function makeEstateApi(config: Config): Router {
   router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes());
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
   router.use(harvestRoutes({ publicUrl }));
+  router.use(todayRoutes(), searchRoutes());
   return router;
+}
+
+const ownMachine = /^(localhost|127(\.\d+){3}|\[::1\])(:\d+)?$/;
+
+/** Address for links that open an account. What a request calls this server is believed only on the machine itself: elsewhere it could be forged to catch the link. */
+function trustedUrl(config: Config, request: Request): string | null {
+  if (config.publicUrl !== '') return config.publicUrl;
+  const host = request.get('host') ?? '';
+  return ownMachine.test(host) ? `http://${host}` : null;
 }
 
 function securityHeaders(config: Config) {

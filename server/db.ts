@@ -9,6 +9,7 @@ import * as m005 from '../migrations/005_lots.ts';
 import * as m006 from '../migrations/006_lab.ts';
 import * as m007 from '../migrations/007_labels.ts';
 import * as m009 from '../migrations/009_field.ts';
+import * as m012 from '../migrations/012_invited_roles_and_backups.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -20,6 +21,7 @@ const migrations: Record<string, Knex.Migration> = {
   '006_lab': m006,
   '007_labels': m007,
   '009_field': m009,
+  '012_invited_roles_and_backups': m012,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

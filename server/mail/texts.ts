@@ -7,6 +7,7 @@ export const mailTexts = {
     pickNotice: { subject: '{estate}: pick notice {number}', text: 'Hello {name},\n\n{body}\n\nConfirm that you have read it:\n{link}' },
     restriction: { subject: '{estate}: do not enter {block}', text: 'Hello {name},\n\nDo not enter {block} until {until}. Product: {product}. Interval as typed from the label: {interval}. Set by {setter}.\n\nThe product label, posted signs, the responsible person and local law come first.' },
     reset: { subject: 'Set a new password', text: 'Hello {name},\n\nopen this link within one hour to set a new password; it works once:\n{link}\n\nIf you did not ask for this, do nothing: your password stays as it is.' },
+    passwordChanged: { subject: 'Your password was changed', text: 'Hello {name},\n\nthe password of your account was changed, and you were signed out everywhere else.\n\nIf that was not you, ask for a new password on the sign-in page at once and tell the owner of your estate.' },
   },
   es: {
     invitation: { subject: 'Su invitación a {estate}', text: 'Hola {name}:\n\n{inviter} le invita a {estate} como {role}.\n\nAbra este enlace en un plazo de {days} días; sirve una sola vez:\n{link}\n\nSi no lo esperaba, no haga nada.' },
@@ -15,6 +16,7 @@ export const mailTexts = {
     pickNotice: { subject: '{estate}: aviso de vendimia {number}', text: 'Hola {name}:\n\n{body}\n\nConfirme que lo ha leído:\n{link}' },
     restriction: { subject: '{estate}: no entrar en {block}', text: 'Hola {name}:\n\nNo entrar en {block} hasta {until}. Producto: {product}. Plazo según la etiqueta: {interval}. Puesto por {setter}.\n\nMandan la etiqueta del producto, las señales puestas, la persona responsable y la ley local.' },
     reset: { subject: 'Nueva contraseña', text: 'Hola {name}:\n\nabra este enlace antes de una hora para poner una contraseña nueva; sirve una sola vez:\n{link}\n\nSi no lo ha pedido, no haga nada: su contraseña sigue igual.' },
+    passwordChanged: { subject: 'Su contraseña ha cambiado', text: 'Hola {name}:\n\nse ha cambiado la contraseña de su cuenta y se han cerrado las demás sesiones.\n\nSi no ha sido usted, pida enseguida una contraseña nueva en la página de entrada y avise a quien dirige su finca.' },
   },
   fr: {
     invitation: { subject: 'Votre invitation à {estate}', text: 'Bonjour {name},\n\n{inviter} vous invite à {estate} en tant que {role}.\n\nOuvrez ce lien dans les {days} jours ; il ne sert qu’une fois :\n{link}\n\nSi vous ne l’attendiez pas, ne faites rien.' },
@@ -23,6 +25,7 @@ export const mailTexts = {
     pickNotice: { subject: '{estate} : avis de vendange {number}', text: 'Bonjour {name},\n\n{body}\n\nConfirmez que vous l’avez lu :\n{link}' },
     restriction: { subject: '{estate} : entrée interdite dans {block}', text: 'Bonjour {name},\n\nEntrée interdite dans {block} jusqu’à {until}. Produit : {product}. Délai saisi d’après l’étiquette : {interval}. Posé par {setter}.\n\nL’étiquette du produit, les panneaux, la personne responsable et la loi locale priment.' },
     reset: { subject: 'Nouveau mot de passe', text: 'Bonjour {name},\n\nouvrez ce lien dans l’heure pour choisir un nouveau mot de passe ; il ne sert qu’une fois :\n{link}\n\nSi vous ne l’avez pas demandé, ne faites rien : votre mot de passe reste le même.' },
+    passwordChanged: { subject: 'Votre mot de passe a changé', text: 'Bonjour {name},\n\nle mot de passe de votre compte a été changé et vos autres connexions ont été fermées.\n\nSi ce n’était pas vous, demandez tout de suite un nouveau mot de passe sur la page de connexion et prévenez le propriétaire de votre domaine.' },
   },
   it: {
     invitation: { subject: 'Il suo invito a {estate}', text: 'Buongiorno {name},\n\n{inviter} la invita a {estate} come {role}.\n\nApra questo collegamento entro {days} giorni; vale una volta sola:\n{link}\n\nSe non lo aspettava, non faccia nulla.' },
@@ -31,6 +34,7 @@ export const mailTexts = {
     pickNotice: { subject: '{estate}: avviso di vendemmia {number}', text: 'Buongiorno {name},\n\n{body}\n\nConfermi di averlo letto:\n{link}' },
     restriction: { subject: '{estate}: vietato entrare in {block}', text: 'Buongiorno {name},\n\nVietato entrare in {block} fino a {until}. Prodotto: {product}. Intervallo come da etichetta: {interval}. Inserito da {setter}.\n\nValgono prima l’etichetta del prodotto, i cartelli, la persona responsabile e la legge locale.' },
     reset: { subject: 'Nuova password', text: 'Buongiorno {name},\n\napra questo collegamento entro un’ora per scegliere una nuova password; vale una volta sola:\n{link}\n\nSe non l’ha chiesto, non faccia nulla: la password resta com’è.' },
+    passwordChanged: { subject: 'La sua password è cambiata', text: 'Buongiorno {name},\n\nla password del suo account è stata cambiata e gli altri accessi sono stati chiusi.\n\nSe non è stato lei, chieda subito una nuova password nella pagina di accesso e avvisi il titolare della tenuta.' },
   },
   pt: {
     invitation: { subject: 'O seu convite para {estate}', text: 'Olá {name},\n\n{inviter} convida-o para {estate} como {role}.\n\nAbra esta ligação dentro de {days} dias; serve uma só vez:\n{link}\n\nSe não a esperava, não faça nada.' },
@@ -39,5 +43,6 @@ export const mailTexts = {
     pickNotice: { subject: '{estate}: aviso de vindima {number}', text: 'Olá {name},\n\n{body}\n\nConfirme que o leu:\n{link}' },
     restriction: { subject: '{estate}: não entrar em {block}', text: 'Olá {name},\n\nNão entrar em {block} até {until}. Produto: {product}. Intervalo conforme o rótulo: {interval}. Registado por {setter}.\n\nO rótulo do produto, os sinais, a pessoa responsável e a lei local vêm primeiro.' },
     reset: { subject: 'Nova palavra-passe', text: 'Olá {name},\n\nabra esta ligação dentro de uma hora para definir uma nova palavra-passe; serve uma só vez:\n{link}\n\nSe não a pediu, não faça nada: a sua palavra-passe fica igual.' },
+    passwordChanged: { subject: 'A sua palavra-passe mudou', text: 'Olá {name},\n\na palavra-passe da sua conta foi mudada e as outras sessões foram terminadas.\n\nSe não foi você, peça já uma nova palavra-passe na página de entrada e avise quem dirige a sua quinta.' },
   },
 } as const;

@@ -6,7 +6,7 @@ export class Invitation extends EstateModel {
 
   declare email: string;
   declare name: string;
-  declare role: Role;
+  declare roles: Role[];
   declare accessEndsOn: string | null;
   declare language: string;
   declare tokenHash: string;

@@ -1,8 +1,7 @@
 import { Router, type Request } from 'express';
-import { rateLimit } from 'express-rate-limit';
 import { crewCodeTyped, crewSignIn } from '../../shared/contracts/phones.ts';
-import { startSession } from '../access/startSession.ts';
-import { TooMuch } from '../errors.ts';
+import { startSession } from '../access/session.ts';
+import { limitTries } from '../access/tries.ts';
 import { crewOffer } from '../services/crew/crewCode.ts';
 import { signInWithPin } from '../services/crew/crewPin.ts';
 import { describeSession } from '../services/sessions.ts';
@@ -10,22 +9,13 @@ import { describeSession } from '../services/sessions.ts';
 /** The door of shared phones: code, name, PIN. */
 export function crewDoorRoutes(options: { csrfToken: (request: Request) => string; demo: boolean; signInTries: number }): Router {
   const router = Router();
-  const tries = rateLimit({
-    windowMs: 15 * 60_000,
-    limit: options.signInTries,
-    skipSuccessfulRequests: true,
-    standardHeaders: 'draft-8',
-    legacyHeaders: false,
-    handler: () => {
-      throw new TooMuch('tooManyTries', 'Too many failed tries from here. Wait a quarter of an hour, then try again.');
-    },
-  });
+  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed tries from here. Wait a quarter of an hour, then try again.' });
   router.post('/crew/people', tries, async (request, response) => {
     response.json(await crewOffer(crewCodeTyped.parse(request.body).code, new Date()));
   });
   router.post('/crew/session', tries, async (request, response) => {
     const { personId } = await signInWithPin(crewSignIn.parse(request.body), new Date());
-    await startSession(request, { id: personId });
+    await startSession(request, { id: personId }, new Date());
     response.json(await describeSession(personId, { csrfToken: options.csrfToken(request), demo: options.demo, today: new Date().toISOString().slice(0, 10) }));
   });
   return router;

@@ -1,7 +1,7 @@
 import { Router } from 'express';
 import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
 import { accessOf, allow, signedIn } from '../access/guard.ts';
-import { changeEstate, createEstate } from '../services/estates.ts';
+import { changeEstate, createEstate, readEstateFacts } from '../services/estates.ts';
 import { describeSession } from '../services/sessions.ts';
 
 /** Estates a person belongs to, and a new one of their own. */
@@ -25,6 +25,9 @@ export function estateRoutes(): Router {
     const access = accessOf(request);
     const { estates } = await describeSession(access.personId, { csrfToken: '', demo: false, today: today() });
     response.json(estates.find((estate) => estate.id === access.estateId));
+  });
+  router.get('/facts', allow('estate.settings', 'read'), async (request, response) => {
+    response.json(await readEstateFacts(accessOf(request)));
   });
   router.patch('/', allow('estate.settings'), async (request, response) => {
     await changeEstate(accessOf(request), estateChange.parse(request.body));

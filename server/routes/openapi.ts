@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
-import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
+import { estateChange, estateFacts, newEstate } from '../../shared/contracts/estate.ts';
 import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
@@ -14,6 +14,9 @@ import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
+import { openSession, passwordChange, resetAnswer, resetRequest } from '../../shared/contracts/account.ts';
+import { searchAnswer } from '../../shared/contracts/search.ts';
+import { todayView } from '../../shared/contracts/today.ts';
 import { credentials, personChange, session } from '../../shared/contracts/session.ts';
 import { exportFormatLine, newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningLine, zoningView } from '../../shared/contracts/zonings.ts';
 
@@ -30,11 +33,21 @@ const operations: Operation[] = [
   { method: 'get', path: '/api/session', summary: 'Who is signed in, in which estates, with which reach', answer: session },
   { method: 'post', path: '/api/session', summary: 'Sign in', body: credentials, answer: session },
   { method: 'delete', path: '/api/session', summary: 'Sign out' },
-  { method: 'patch', path: '/api/session/person', summary: 'Change own name, language, units, theme or password', body: personChange, answer: session },
+  { method: 'patch', path: '/api/session/person', summary: 'Change own name, language, units or theme', body: personChange, answer: session },
+  { method: 'put', path: '/api/account/password', summary: 'Set a new password with the old one; other sessions end', body: passwordChange },
+  { method: 'get', path: '/api/account/sessions', summary: 'Where one is signed in', answer: z.object({ items: z.array(openSession), total: z.int() }) },
+  { method: 'delete', path: '/api/account/sessions', summary: 'End all other sessions' },
+  { method: 'delete', path: '/api/account/sessions/{key}', summary: 'End one session' },
+  { method: 'post', path: '/api/password-resets', summary: 'Ask for a link that sets a new password; the answer is always the same', body: resetRequest },
+  { method: 'post', path: '/api/password-resets/use', summary: 'Set a new password with a link, once', body: resetAnswer },
   { method: 'post', path: '/api/invitations/accept', summary: 'Join an estate with an invitation', body: invitationAnswer, answer: session },
   { method: 'post', path: '/api/estates', summary: 'Make an estate', body: newEstate },
   { method: 'patch', path: '/api/estates/{estateId}', summary: 'Change an estate', body: estateChange },
+  { method: 'get', path: '/api/estates/{estateId}/facts', summary: 'What the estate says of itself, its settings, and backups', answer: estateFacts },
   { method: 'post', path: '/api/estates/{estateId}/invitations', summary: 'Invite a person', body: newInvitation },
+  { method: 'post', path: '/api/estates/{estateId}/invitations/{invitationId}/resend', summary: 'Send an invitation once more, with a new link' },
+  { method: 'get', path: '/api/estates/{estateId}/today', summary: 'What waits for the person today', answer: todayView },
+  { method: 'get', path: '/api/estates/{estateId}/search', summary: 'Things whose name answers (?q=)', answer: searchAnswer },
   { method: 'put', path: '/api/estates/{estateId}/people/{personId}/roles', summary: 'Set the roles of a person', body: rolesChange },
   { method: 'get', path: '/api/estates/{estateId}/blocks', summary: 'Blocks with area, vines, zones in force, next round and restriction', answer: z.object({ items: z.array(blockLine), total: z.int() }) },
   { method: 'post', path: '/api/estates/{estateId}/blocks', summary: 'Make a block from its outline and facts; its rows are laid', body: newBlock, answer: changedBlock },

@@ -1,12 +1,13 @@
 import { Router, type Request } from 'express';
-import { rateLimit } from 'express-rate-limit';
 import type { Passport } from 'passport';
 import { credentials, personChange } from '../../shared/contracts/session.ts';
 import { invitationAnswer } from '../../shared/contracts/people.ts';
 import { signedIn } from '../access/guard.ts';
-import { startSession } from '../access/startSession.ts';
-import { NotSignedIn, TooMuch } from '../errors.ts';
-import { acceptInvitation, changeSelf, readInvitation } from '../services/people.ts';
+import { startSession } from '../access/session.ts';
+import { limitTries } from '../access/tries.ts';
+import { NotSignedIn } from '../errors.ts';
+import { acceptInvitation, readInvitation } from '../services/people/invitations.ts';
+import { changeSelf } from '../services/people/people.ts';
 import { describeSession } from '../services/sessions.ts';
 
 interface Options {
@@ -21,16 +22,7 @@ export function sessionRoutes(options: Options): Router {
   const router = Router();
   const describe = (request: Request) =>
     describeSession(request.user?.id ?? null, { csrfToken: options.csrfToken(request), demo: options.demo, today: new Date().toISOString().slice(0, 10) });
-  const tries = rateLimit({
-    windowMs: 15 * 60_000,
-    limit: options.signInTries,
-    skipSuccessfulRequests: true,
-    standardHeaders: 'draft-8',
-    legacyHeaders: false,
-    handler: () => {
-      throw new TooMuch('tooManyTries', 'Too many failed sign-ins from here. Wait a quarter of an hour, then try again.');
-    },
-  });
+  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed sign-ins from here. Wait a quarter of an hour, then try again.' });
 
   router.get('/session', async (request, response) => {
     response.set('cache-control', 'no-store').json(await describe(request));
@@ -43,7 +35,7 @@ export function sessionRoutes(options: Options): Router {
       handler(request, response, next);
     });
     if (!user) throw new NotSignedIn('E-mail and password do not fit together. Check both, or ask for a new password.');
-    await startSession(request, user);
+    await startSession(request, user, new Date());
     response.json(await describe(request));
   });
 
@@ -63,7 +55,7 @@ export function sessionRoutes(options: Options): Router {
 
   router.post('/invitations/accept', tries, async (request, response) => {
     const { personId } = await acceptInvitation(invitationAnswer.parse(request.body), new Date());
-    await startSession(request, { id: personId });
+    await startSession(request, { id: personId }, new Date());
     response.status(201).json(await describe(request));
   });
 

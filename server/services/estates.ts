@@ -1,10 +1,12 @@
 import type { z } from 'zod';
-import { estateSettings, type NewEstate, type estateChange } from '../../shared/contracts/estate.ts';
+import { may } from '../../shared/catalog/permissions.ts';
+import { estateSettings, type BackupView, type EstateFactsView, type NewEstate, type estateChange } from '../../shared/contracts/estate.ts';
 import { measures } from '../../shared/catalog/measures.ts';
 import type { Access } from '../access/access.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
+import { BackupRecord } from '../models/BackupRecord.ts';
 import { Estate } from '../models/Estate.ts';
-import { fromGeoJson } from '../models/geometry.ts';
+import { asGeoJson, fromGeoJson } from '../models/geometry.ts';
 import { MeasureRecord } from '../models/MeasureRecord.ts';
 import { Membership } from '../models/Membership.ts';
 import { Scenario } from '../models/Scenario.ts';
@@ -58,6 +60,25 @@ export function seasonAround(today: string, startMonth: number): { name: string;
   // A season that begins in the last quarter belongs to the year of its vintage; one across mid-year names both.
   const name = startMonth === 1 ? String(startYear) : startMonth >= 10 ? String(startYear + 1) : `${startYear}/${String(startYear + 1).slice(2)}`;
   return { name, startsOn, endsOn };
+}
+
+/** What the estate says of itself and has set; who may restore is told of backups as well. */
+export async function readEstateFacts(access: Access): Promise<EstateFactsView> {
+  const estate = (await Estate.query().findById(access.estateId).select('estates.*', asGeoJson('marker').as('marker')).throwIfNotFound()) as Estate & { marker: NewEstate['marker'] };
+  const { name, country, timeZone, units, languages, seasonStartMonth, marker } = estate;
+  return {
+    facts: { name, country, timeZone, units, languages: languages as NewEstate['languages'], seasonStartMonth, marker },
+    settings: estateSettings.parse(estate.settings),
+    backup: may(access.roles, 'estate.backup') ? await readBackups() : null,
+  };
+}
+
+async function readBackups(): Promise<BackupView> {
+  const [last, drill] = await Promise.all([
+    BackupRecord.query().where({ kind: 'backup', ok: true }).orderBy('archivedAt', 'desc').first(),
+    BackupRecord.query().where({ kind: 'drill' }).orderBy('at', 'desc').first(),
+  ]);
+  return { lastAt: last?.archivedAt.toISOString() ?? null, rows: last?.rowTotal ?? 0, files: last?.fileTotal ?? 0, drillAt: drill?.at.toISOString() ?? null, drillOk: drill?.ok ?? null };
 }
 
 export async function changeEstate(access: Access, change: z.infer<typeof estateChange>): Promise<void> {

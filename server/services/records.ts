@@ -29,6 +29,9 @@ export async function listAudit(access: Access, { before, subject }: { before: n
   };
 }
 
+/** A link that sets a password is for its reader alone; it is shown only where nothing but this outbox can deliver it. */
+const isDelivered = ({ kind, state }: MailMessage) => kind === 'reset' && state !== 'outbox';
+
 /** Messages of the estate as they were written, newest first: the local outbox. */
 export async function listMail(access: Access) {
   const messages = await MailMessage.query().where({ estateId: access.estateId }).orderBy('createdAt', 'desc').limit(200);
@@ -39,7 +42,7 @@ export async function listMail(access: Access) {
       to: message.toAddress,
       name: message.toName,
       subject: message.subject,
-      text: message.bodyText,
+      text: isDelivered(message) ? message.bodyText.replace(/https?:\/\/\S+/, '…') : message.bodyText,
       state: message.state,
       error: message.error,
       createdAt: message.createdAt.toISOString(),

@@ -9,6 +9,9 @@ export const language = z.enum(languages);
 export const units = z.enum(['metric', 'us']);
 export const themes = z.enum(['system', 'light', 'dark', 'outdoor']);
 
+/** A password as somebody chooses it. */
+export const newPassword = z.string().min(10, 'A password needs at least 10 characters.').max(200);
+
 /** Name typed by a person: trimmed, not empty, one line. */
 export const shortName = z.string().trim().min(1, 'Give a name.').max(80, 'At most 80 characters.').regex(/^[^\r\n\t]*$/, 'One line only.');
 

@@ -18,10 +18,18 @@ export const estateSettings = z.object({
 });
 export type EstateSettings = z.infer<typeof estateSettings>;
 
+function isTimeZone(name: string): boolean {
+  try {
+    return new Intl.DateTimeFormat('en', { timeZone: name }).resolvedOptions().timeZone !== '';
+  } catch {
+    return false;
+  }
+}
+
 export const newEstate = z.object({
   name: shortName,
   country: z.string().trim().max(60).default(''),
-  timeZone: z.string().trim().min(1).max(60).default('UTC'),
+  timeZone: z.string().trim().min(1).max(60).refine(isTimeZone, 'This is no time zone; choose one from the list, such as Europe/Lisbon.').default('UTC'),
   units: units.default('metric'),
   languages: z.array(language).min(1).default(['en']),
   seasonStartMonth: z.number().int().min(1).max(12).default(12),
@@ -30,6 +38,13 @@ export const newEstate = z.object({
 export type NewEstate = z.infer<typeof newEstate>;
 
 export const estateChange = newEstate.partial().extend({ settings: estateSettings.partial().optional() });
+
+/** What the owner is shown of backups: when the last good one was made, and when one was last read back for a trial. */
+export const backupView = z.object({ lastAt: z.string().nullable(), rows: z.int(), files: z.int(), drillAt: z.string().nullable(), drillOk: z.boolean().nullable() });
+export type BackupView = z.infer<typeof backupView>;
+
+export const estateFacts = z.object({ facts: newEstate, settings: estateSettings, backup: backupView.nullable() });
+export type EstateFactsView = z.infer<typeof estateFacts>;
 
 export const seasonView = z.object({ id, name: z.string(), startsOn: isoDate, endsOn: isoDate, phases: z.record(z.string(), z.tuple([isoDate, isoDate])), closed: z.boolean() });
 export type SeasonView = z.infer<typeof seasonView>;

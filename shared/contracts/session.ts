@@ -29,11 +29,8 @@ export const session = z.object({ person: sessionPerson.nullable(), estates: z.a
 export type Session = z.infer<typeof session>;
 
 export const personChange = z.object({
-  name: z.string().trim().min(1).max(120).optional(),
+  name: z.string().trim().min(1, 'Give your name.').max(120).optional(),
   language: language.optional(),
   units: units.optional(),
   theme: themes.optional(),
-  /** Both needed to change the password. */
-  password: z.string().min(10, 'A password needs at least 10 characters.').max(200).optional(),
-  currentPassword: z.string().max(200).optional(),
 });

@@ -2,6 +2,7 @@ import { createRouter, createWebHistory, type RouteLocationNormalized, type Rout
 import type { Permission, Reach } from '../../shared/catalog/permissions.ts';
 import type { useSessionStore } from '../stores/session.ts';
 import { firstPlace } from '../composables/firstPlace.ts';
+import { announceArrivals } from './arrival.ts';
 import { routePlaces, type Frame, type RouteName } from './routeNames.ts';
 import { views } from './views.ts';
 
@@ -12,6 +13,9 @@ declare module 'vue-router' {
     under?: RouteName;
   }
 }
+
+/** Doors that stand open to somebody who is not signed in. */
+const openToAll: ReadonlySet<RouteName> = new Set(['signIn', 'crewDoor', 'join', 'forgotten', 'reset', 'notFound']);
 
 type SessionStore = ReturnType<typeof useSessionStore>;
 
@@ -27,11 +31,12 @@ function records(): RouteRecordRaw[] {
 export function createAppRouter(session: SessionStore): Router {
   const router = createRouter({ history: createWebHistory(), routes: records(), scrollBehavior: (to, from, saved) => saved ?? (to.name === from.name ? false : { top: 0 }) });
   router.beforeEach((to) => guard(to, session, router));
+  announceArrivals(router);
   return router;
 }
 
 function guard(to: RouteLocationNormalized, session: SessionStore, router: Router) {
-  if (to.name === 'signIn' || to.name === 'crewDoor' || to.name === 'join' || to.name === 'notFound') return true;
+  if (openToAll.has(to.name as RouteName)) return true;
   if (session.person === null) return { name: 'signIn', query: to.fullPath === '/' ? {} : { to: to.fullPath } };
   const estateId = to.params.estateId;
   if (typeof estateId === 'string') {

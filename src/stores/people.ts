@@ -1,6 +1,8 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
+import type { estateChange, EstateFactsView, NewEstate } from '../../shared/contracts/estate.ts';
+import type { MeasureChange, MeasureView } from '../../shared/contracts/measures.ts';
 import type { InvitationView, newInvitation, PersonView, rolesChange } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
 
@@ -45,6 +47,11 @@ export const usePeopleStore = defineStore('people', () => {
     await load(estateId);
   }
 
+  async function resend(estateId: string, invitationId: string): Promise<void> {
+    await http.post(`/api/estates/${estateId}/invitations/${invitationId}/resend`);
+    await load(estateId);
+  }
+
   async function revoke(estateId: string, invitationId: string): Promise<void> {
     await http.delete(`/api/estates/${estateId}/invitations/${invitationId}`);
     await load(estateId);
@@ -58,5 +65,11 @@ export const usePeopleStore = defineStore('people', () => {
   const audit = (estateId: string, before: number | null) => http.get<{ items: AuditLine[]; next: number | null }>(`/api/estates/${estateId}/audit`, { query: { before } });
   const mail = (estateId: string) => http.get<Listed<MailLine>>(`/api/estates/${estateId}/mail`);
 
-  return { people, invitations, load, invite, revoke, setRoles, audit, mail };
+  const facts = (estateId: string) => http.get<EstateFactsView>(`/api/estates/${estateId}/facts`);
+  const changeEstate = (estateId: string, change: z.input<typeof estateChange>) => http.patch(`/api/estates/${estateId}`, change);
+  const makeEstate = (estate: NewEstate) => http.post<{ id: string }>('/api/estates', estate);
+  const measures = async (estateId: string) => (await http.get<Listed<MeasureView>>(`/api/estates/${estateId}/measures`)).items;
+  const changeMeasure = (estateId: string, measureId: string, change: MeasureChange) => http.patch<MeasureView>(`/api/estates/${estateId}/measures/${measureId}`, change);
+
+  return { people, invitations, load, invite, resend, revoke, setRoles, audit, mail, facts, changeEstate, makeEstate, measures, changeMeasure };
 });

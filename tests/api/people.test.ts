@@ -17,7 +17,7 @@ afterAll(() => app.close());
 const base = () => `/api/estates/${estate.estateId}`;
 
 async function inviteLink(email: string, role = 'agronomist'): Promise<string> {
-  expect((await owner.post(`${base()}/invitations`, { email, name: 'Mara Quill', role })).status).toBe(201);
+  expect((await owner.post(`${base()}/invitations`, { email, name: 'Mara Quill', roles: [role] })).status).toBe(201);
   const { items } = (await owner.get(`${base()}/mail`)).body as { items: { to: string; text: string }[] };
   const mail = items.find((item) => item.to === email)!;
   return /\/join\/(\S+)/.exec(mail.text)![1]!;
@@ -27,7 +27,7 @@ describe('inviting', () => {
   it('writes a mail that the owner can read, and its link opens the estate once', async () => {
     const token = await inviteLink('mara@new.example');
     const guest = await app.browser();
-    expect((await guest.get(`/api/invitations/${token}`)).body).toMatchObject({ estate: 'Quiet Bank', role: 'agronomist', knownPerson: false });
+    expect((await guest.get(`/api/invitations/${token}`)).body).toMatchObject({ estate: 'Quiet Bank', roles: ['agronomist'], knownPerson: false });
     const joined = await guest.post('/api/invitations/accept', { token, name: 'Mara Quill', password: 'vines and rows' });
     expect(joined.status).toBe(201);
     expect(joined.body.estates[0]).toMatchObject({ name: 'Quiet Bank', roles: ['agronomist'] });
@@ -54,12 +54,12 @@ describe('inviting', () => {
 
   it('lets a manager invite crew and nobody else', async () => {
     const manager = await app.as((await app.addPerson(estate.estateId, 'manager')).email);
-    expect((await manager.post(`${base()}/invitations`, { email: 'rui@new.example', role: 'crew' })).status).toBe(201);
-    expect((await manager.post(`${base()}/invitations`, { email: 'boss@new.example', role: 'admin' })).status).toBe(403);
+    expect((await manager.post(`${base()}/invitations`, { email: 'rui@new.example', roles: ['crew'] })).status).toBe(201);
+    expect((await manager.post(`${base()}/invitations`, { email: 'boss@new.example', roles: ['admin'] })).status).toBe(403);
   });
 
   it('names the field of a bad address', async () => {
-    const answer = await owner.post(`${base()}/invitations`, { email: 'not an address', role: 'crew' });
+    const answer = await owner.post(`${base()}/invitations`, { email: 'not an address', roles: ['crew'] });
     expect(answer.status).toBe(422);
     expect(answer.body.errors[0].path).toBe('email');
   });

@@ -20,12 +20,16 @@ const door = (method: Door['method'], path: string, action: Permission, atLeast:
 /** Every door of an estate with what it asks for. A new route adds its row here. */
 const doors: Door[] = [
   door('get', '', 'estate.see', 'read'),
+  door('get', '/facts', 'estate.settings', 'read'),
   door('patch', '', 'estate.settings'),
   door('get', '/people', 'people.see', 'read'),
   door('put', `/people/${nobody}/roles`, 'people.manage', 'propose'),
   door('get', '/invitations', 'people.see', 'read'),
   door('post', '/invitations', 'people.manage', 'propose'),
+  door('post', `/invitations/${nobody}/resend`, 'people.manage', 'propose'),
   door('delete', `/invitations/${nobody}`, 'people.manage', 'propose'),
+  door('get', '/today', 'estate.see', 'read'),
+  door('get', '/search?q=marl', 'estate.see', 'read'),
   door('get', '/audit', 'audit.see', 'read'),
   door('get', '/mail', 'mail.see'),
   door('get', `/jobs/${nobody}`, 'estate.see', 'read'),

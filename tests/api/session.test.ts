@@ -62,8 +62,8 @@ describe('the door', () => {
   it('changes a password only for somebody who knows the old one', async () => {
     const person = await app.addPerson(estate.estateId, 'lab');
     const one = await app.as(person.email);
-    expect((await one.patch('/api/session/person', { password: 'another long one', currentPassword: 'wrong' })).status).toBe(422);
-    expect((await one.patch('/api/session/person', { password: 'another long one', currentPassword: testPassword })).status).toBe(200);
+    expect((await one.put('/api/account/password', { password: 'another long one', currentPassword: 'wrong' })).status).toBe(422);
+    expect((await one.put('/api/account/password', { password: 'another long one', currentPassword: testPassword })).status).toBe(200);
     expect((await (await app.browser()).signIn(person.email, 'another long one')).status).toBe(200);
   });
 });

@@ -20,7 +20,7 @@ export async function layOneOfEach(knex: Knex, estateId: string, personId: strin
   const seasonId = ((await knex('seasons').where({ estateId }).first('id')) as { id: string }).id;
   ids.set('measures', ((await knex('measures').where({ estateId }).first('id')) as { id: string }).id);
   const scenarioId = ((await knex('scenarios').where({ estateId }).first('id')) as { id: string }).id;
-  await put('invitations', { email: `${randomUUID()}@test.example`, role: 'crew', tokenHash: randomUUID(), expiresAt: '2999-01-01', invitedBy: personId });
+  await put('invitations', { email: `${randomUUID()}@test.example`, roles: knex.raw('array[?]', ['crew']), tokenHash: randomUUID(), expiresAt: '2999-01-01', invitedBy: personId });
   const blockId = await put('blocks', { name: 'Over the Wall', boundary: knex.raw('?::geometry', [outline]), areaM2: 900_000, epsg: 32629, gridKey: 'none' });
   await put('jobs', { kind: 'zoning', subjectType: 'zoning' });
   await put('files', { sha256: '0'.repeat(64), bytes: 1, originalName: 'wall.tif' });

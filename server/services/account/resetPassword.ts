@@ -1,0 +1,62 @@
+import type { ResetAnswer } from '../../../shared/contracts/account.ts';
+import { hashPassword, hashToken, newToken } from '../../access/passwords.ts';
+import { Clash, Missing } from '../../errors.ts';
+import { PasswordReset } from '../../models/PasswordReset.ts';
+import { Person } from '../../models/Person.ts';
+import { endSessions } from '../../models/SessionRecord.ts';
+import { auditAccount, mailAboutAccount } from './accountMail.ts';
+
+const linkMinutes = 60;
+/** More links in an hour are not written: nobody's letter box is filled by somebody else. */
+const linksAnHour = 3;
+
+/**
+ * Writes a link that sets a new password, where the address belongs to somebody. Says nothing of it: the caller answers
+ * everybody alike. Only the hash of the link's secret is stored.
+ */
+export async function askForReset(email: string, options: { publicUrl: string; allowDemo: boolean; now: Date }): Promise<void> {
+  const person = await Person.query().findOne({ email });
+  if (!person || (person.isDemo && !options.allowDemo)) return;
+  const hourAgo = new Date(options.now.getTime() - 3_600_000);
+  await PasswordReset.transaction(async (trx) => {
+    await Person.query(trx).findById(person.id).forUpdate();
+    if ((await PasswordReset.query(trx).where({ personId: person.id }).where('createdAt', '>', hourAgo).resultSize()) >= linksAnHour) return;
+    const { token, tokenHash } = newToken();
+    await PasswordReset.query(trx).insert({ personId: person.id, tokenHash, expiresAt: new Date(options.now.getTime() + linkMinutes * 60_000), createdAt: options.now });
+    await mailAboutAccount(trx, person, { kind: 'reset', facts: { link: `${options.publicUrl}/reset/${token}` } });
+    await auditAccount(trx, person, 'account.askReset');
+  });
+}
+
+/** Whose password a link sets, as long as it is good. */
+export async function readReset(token: string, now: Date): Promise<{ email: string }> {
+  const reset = await openReset(token, now);
+  const person = await Person.query().findById(reset.personId).throwIfNotFound();
+  return { email: person.email ?? '' };
+}
+
+/** Sets the new password with a link, once. All sessions of the person and all their other links end. */
+export async function useReset(answer: ResetAnswer, now: Date): Promise<void> {
+  const offer = await openReset(answer.token, now);
+  const passwordHash = await hashPassword(answer.password);
+  await PasswordReset.transaction(async (trx) => {
+    const taken = await PasswordReset.query(trx).where({ personId: offer.personId, id: offer.id }).whereNull('usedAt').patch({ usedAt: now });
+    if (taken === 0) throw used();
+    await PasswordReset.query(trx).where({ personId: offer.personId }).whereNull('usedAt').patch({ usedAt: now });
+    const person = await Person.query(trx).findById(offer.personId).throwIfNotFound();
+    await Person.query(trx).findById(person.id).patch({ passwordHash });
+    await endSessions(trx, person.id);
+    await auditAccount(trx, person, 'account.reset');
+    if (person.email !== null) await mailAboutAccount(trx, person, { kind: 'passwordChanged', facts: {} });
+  });
+}
+
+async function openReset(token: string, now: Date): Promise<PasswordReset> {
+  const reset = await PasswordReset.query().findOne({ tokenHash: hashToken(token) });
+  if (!reset) throw new Missing('This link is not known. Ask for a new one.');
+  if (reset.usedAt) throw used();
+  if (reset.expiresAt < now) throw new Clash('expiredReset', 'This link has expired. Ask for a new one.');
+  return reset;
+}
+
+const used = () => new Clash('usedReset', 'This link has been used already, or a newer one was. Ask for a new one.');

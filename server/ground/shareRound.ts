@@ -9,22 +9,35 @@ export interface ShareInput {
   vines: { rowIndex: number; ordinal: number; zone: number; serviceS: number }[];
   gateXY: XY;
   people: number;
+  /** Back to the gate (usual), or over at the last vine. */
+  end?: 'gate' | 'anywhere';
 }
 
 export interface WalkShare {
   lengthM: number;
   walkingS: number;
   serviceS: number;
+  /** The way, in UTM metres. */
+  pathXY: readonly XY[];
   /** In walking order; `target` is the index of the vine in the input. */
   lines: SheetLine[];
 }
 
-/** The walks of a round, one a person, each from the gate and back, with loads as even as contiguous runs of rows allow. */
-export function shareRound({ rows, vines, gateXY, people }: ShareInput): WalkShare[] {
+export interface SharedRound {
+  walks: WalkShare[];
+  /** Whether the loads lie within 15 percent; else the largest is the least possible. */
+  isEven: boolean;
+}
+
+/** The walks of a round, one a person, each from the gate and back (or ending at the last vine), with loads as even as contiguous runs of rows allow. */
+export function shareRound({ rows, vines, gateXY, people, end = 'gate' }: ShareInput): SharedRound {
   const serviceSOf = (vine: number) => vines[vine]!.serviceS;
-  const { walks } = shareBlockWalk({ rows, vines, gateXY }, { people, serviceSOf });
-  return walks.map((walk: BlockWalk) => {
-    const time = walkTime(walk.walk, serviceSOf);
-    return { lengthM: walk.walk.lengthM, walkingS: time.walkingS, serviceS: time.serviceS, lines: sheetOfBlock({ rows, vines }, walk, (vine) => vines[vine]!.zone) };
-  });
+  const { walks, isEven } = shareBlockWalk({ rows, vines, gateXY, end }, { people, serviceSOf });
+  return {
+    isEven,
+    walks: walks.map((walk: BlockWalk) => {
+      const time = walkTime(walk.walk, serviceSOf);
+      return { lengthM: walk.walk.lengthM, walkingS: time.walkingS, serviceS: time.serviceS, pathXY: walk.pathXY, lines: sheetOfBlock({ rows, vines }, walk, (vine) => vines[vine]!.zone) };
+    }),
+  };
 }

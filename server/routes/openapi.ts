@@ -9,7 +9,7 @@ import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
 import { newTicket, reviewView } from '../../shared/contracts/tickets.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
 import { blockLayerView, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
-import { newPlan, planBasis, planChange, planRedraw, planView } from '../../shared/contracts/plans.ts';
+import { divisionQuestion, newPlan, planBasis, planChange, planRedraw, planStanding, planView, planWalk, zoneDivision } from '../../shared/contracts/plans.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
@@ -95,6 +95,9 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}/plans/{planId}', summary: 'Change a draft plan', body: planChange, answer: planView },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/lock', summary: 'Keep the vines of a plan as drawn', answer: planView },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/redraw', summary: 'Draw other vines, with a reason', body: planRedraw, answer: planView },
+  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/walk', summary: 'The walk past the vines from a gate, shared among people, as lines on the map', answer: planWalk },
+  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/standing', summary: 'How far each zone is with what was read: enough here, or so many more', answer: z.object({ items: z.array(planStanding) }) },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/divisions', summary: 'Zones that a plan asks too much of, divided where their readings say that this saves work', body: divisionQuestion, answer: z.object({ items: z.array(zoneDivision) }) },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/export', summary: 'The vines of a plan as a file (format=csv or gpx)' },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/rounds', summary: 'Send the vines of a plan to people for a day', body: newRound },
   { method: 'get', path: '/api/estates/{estateId}/rounds', summary: 'Rounds; crew see their own' },

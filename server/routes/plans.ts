@@ -1,11 +1,14 @@
 import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { newPlan, planChange, planRedraw } from '../../shared/contracts/plans.ts';
+import { divisionQuestion, newPlan, planChange, planRedraw, walkQuestion } from '../../shared/contracts/plans.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import { divisionsOf } from '../services/plans/divisions.ts';
 import { exportPlan } from '../services/plans/exportPlan.ts';
 import { planBasisOf } from '../services/plans/planBasis.ts';
 import { listPlans, plannableZonings, viewPlan } from '../services/plans/viewPlan.ts';
+import { standingOfPlan } from '../services/plans/standingOfPlan.ts';
+import { walkOfPlan } from '../services/plans/walkOfPlan.ts';
 import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
 
 const filter = z.object({ block: id.optional() });
@@ -18,6 +21,9 @@ export function planRoutes(): Router {
 
   router.get('/zonings/:zoningId/plan-basis', read, async (request, response) => {
     response.json(await planBasisOf(accessOf(request), idParam(request, 'zoningId')));
+  });
+  router.post('/zonings/:zoningId/divisions', read, async (request, response) => {
+    response.json({ items: await divisionsOf(accessOf(request), idParam(request, 'zoningId'), divisionQuestion.parse(request.body).choices) });
   });
   router.get('/zonings/:zoningId/plans', read, async (request, response) => {
     const items = await listPlans(accessOf(request), { zoningId: idParam(request, 'zoningId') });
@@ -33,6 +39,12 @@ export function planRoutes(): Router {
   });
   router.get('/plans/:planId', read, async (request, response) => {
     response.json(await viewPlan(accessOf(request), idParam(request, 'planId')));
+  });
+  router.get('/plans/:planId/walk', read, async (request, response) => {
+    response.json(await walkOfPlan(accessOf(request), idParam(request, 'planId'), walkQuestion.parse(request.query)));
+  });
+  router.get('/plans/:planId/standing', read, async (request, response) => {
+    response.json({ items: await standingOfPlan(accessOf(request), idParam(request, 'planId')) });
   });
   router.patch('/plans/:planId', allow('plans.draw'), async (request, response) => {
     response.json(await changePlan(accessOf(request), idParam(request, 'planId'), planChange.parse(request.body)));

@@ -23,3 +23,6 @@ export const polygonGeometry = z.object({ type: z.literal('Polygon'), coordinate
 export const multiPolygonGeometry = z.object({ type: z.literal('MultiPolygon'), coordinates: z.array(z.array(ring).min(1)).min(1) });
 export const areaGeometry = z.discriminatedUnion('type', [polygonGeometry, multiPolygonGeometry]);
 export const lineGeometry = z.object({ type: z.literal('LineString'), coordinates: z.array(position).min(2) });
+
+/** Longitude and latitude in degrees, WGS 84. */
+export const lonLat = z.tuple([z.number().min(-180).max(180), z.number().min(-90).max(90)]);

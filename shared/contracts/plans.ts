@@ -1,9 +1,24 @@
 import { z } from 'zod';
 import { postColour } from './blocks.ts';
-import { id, shortName } from './common.ts';
+import { id, lonLat, shortName } from './common.ts';
 import { confidence, marginKind } from './measures.ts';
 
 export const planAllocations = ['leastCost', 'equal', 'area', 'spread', 'spreadAndCost'] as const;
+
+/** What is taken of a vine: clusters, and berries of each. Spreads are in the measure's own form, like its spread between vines. */
+export const handful = z.object({
+  perVine: z.number().int().min(1).max(50).default(1),
+  /** Null: whole clusters. */
+  perCluster: z.number().int().min(1).max(500).nullable().default(null),
+  withinVine: z.number().min(0),
+  withinCluster: z.number().min(0).default(0),
+  /** What was taken when the spread between vines was measured. */
+  nowPerVine: z.number().int().min(1).max(50).default(1),
+  nowPerCluster: z.number().int().min(1).max(500).nullable().default(null),
+  secondsPerCluster: z.number().min(0).max(3600).default(20),
+  secondsPerBerry: z.number().min(0).max(600).default(2),
+});
+export type Handful = z.infer<typeof handful>;
 
 /** One measure of a plan with what the manager asks of it. */
 export const plannedMeasure = z.object({
@@ -12,6 +27,11 @@ export const plannedMeasure = z.object({
   margin: z.number().positive().max(10_000).optional(),
   marginKind: marginKind.optional(),
   confidence: confidence.optional(),
+  /** At the vine, for one sample. */
+  secondsPerSample: z.number().min(0).max(7200).optional(),
+  /** Spreads typed by hand in place of those found, by zone number, in the measure's own form (unit, or share of the mean). */
+  spreads: z.record(z.string(), z.number().positive().max(10_000)).optional(),
+  handful: handful.optional(),
 });
 export type PlannedMeasureChoice = z.infer<typeof plannedMeasure>;
 
@@ -23,6 +43,12 @@ export const planChoices = z.object({
   allocation: z.enum(planAllocations).default('leastCost'),
   isPilot: z.boolean().default(false),
   pilotVines: z.number().int().min(2).max(500).default(20),
+  /** Where a pilot was read, its own spread decides by the two-stage rule. */
+  afterPilot: z.boolean().default(false),
+  /** Whether later visits read the same vines or new ones. */
+  revisit: z.enum(['same', 'new']).default('same'),
+  /** How two readings of one vine go together from visit to visit; 0 when they do not. */
+  correlation: z.number().min(0).max(0.99).default(0.5),
   /** Plan with the spread that is exceeded one time in five only, instead of the estimate. */
   isCautious: z.boolean().default(false),
   /** Least vines in a zone; the estate's own when left out. */
@@ -64,6 +90,9 @@ export const basisSpread = z.object({
 });
 export type BasisSpread = z.infer<typeof basisSpread>;
 
+/** What a pilot read in a zone: spread in the measure's own form, pooled within its visits. */
+export const pilotReadings = z.object({ n: z.number().int(), df: z.number().int(), spread: z.number() });
+
 export const basisMeasure = z.object({
   code: z.string(),
   name: z.string(),
@@ -78,6 +107,8 @@ export const basisMeasure = z.object({
   tradeSource: z.string(),
   /** One a zone, in the order of the zones. */
   spreads: z.array(basisSpread),
+  /** One a zone; null where the pilot read fewer than two vines. */
+  pilots: z.array(pilotReadings.nullable()).default([]),
 });
 export type BasisMeasure = z.infer<typeof basisMeasure>;
 
@@ -94,9 +125,67 @@ export const planBasis = z.object({
   seasonName: z.string(),
   zones: z.array(basisZone),
   measures: z.array(basisMeasure),
+  /** The latest pilot of this block and season, and how many of its vines were read. */
+  pilot: z.object({ planId: id, name: z.string(), vines: z.number().int(), read: z.number().int() }).nullable().default(null),
   settings: z.object({ floorVines: z.number(), impracticalSamples: z.number(), dayHours: z.number(), costPerHour: z.number(), currency: z.string() }),
 });
 export type PlanBasis = z.infer<typeof planBasis>;
+
+/** How far a zone is for one measure, with what was read on the latest visit. */
+export const planStanding = z.object({
+  zone: z.number().int(),
+  measureCode: z.string(),
+  n: z.number().int(),
+  planned: z.number().int(),
+  say: z.enum(['enough', 'goOn', 'walkOn', 'allRead']),
+  more: z.number().int().nullable(),
+  mean: z.number().nullable(),
+  halfWidth: z.number().nullable(),
+  /** In the unit. */
+  margin: z.number().nullable(),
+  confidence: z.number(),
+});
+export type PlanStanding = z.infer<typeof planStanding>;
+
+const asNumbers = z.string().transform((text) => text.split(',').map(Number)).pipe(lonLat);
+export const walkQuestion = z.object({
+  people: z.coerce.number().int().min(1).max(20).default(1),
+  end: z.enum(['gate', 'anywhere']).default('gate'),
+  /** "lon,lat"; the block's own gate when left out. */
+  gate: asNumbers.nullable().default(null),
+});
+/** The walk of a plan as it would be sent. */
+export const planWalk = z.object({
+  gate: lonLat,
+  isGateAssumed: z.boolean(),
+  isEven: z.boolean(),
+  people: z.array(z.object({ lengthM: z.number(), walkingS: z.number(), serviceS: z.number(), path: z.array(z.tuple([z.number(), z.number()])), targetIds: z.array(id) })),
+});
+export type PlanWalk = z.infer<typeof planWalk>;
+
+/** A zone that asks for too much, divided along a layer where its readings say that this is cheaper. */
+export const zoneDivision = z.object({
+  zone: z.string(),
+  measureCode: z.string(),
+  layerId: id,
+  layerName: z.string(),
+  division: z.object({
+    cut: z.number(),
+    vines: z.tuple([z.number(), z.number()]),
+    spreads: z.tuple([z.number(), z.number()]),
+    counts: z.tuple([z.number(), z.number()]),
+    total: z.number(),
+    saving: z.number(),
+    recommended: z.boolean(),
+  }),
+  /** Means of the two parts' readings. */
+  means: z.tuple([z.number(), z.number()]),
+  /** Number the second part would take, and its vines along the rows: what the zone editor gives to it. */
+  newZone: z.number().int(),
+  rows: z.array(z.object({ rowId: id, from: z.number().int(), to: z.number().int() })),
+});
+export type ZoneDivision = z.infer<typeof zoneDivision>;
+export const divisionQuestion = z.object({ choices: planChoices });
 
 export const planState = z.enum(['draft', 'locked', 'closed']);
 

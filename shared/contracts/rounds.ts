@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { id, isoDate } from './common.ts';
+import { id, isoDate, lonLat } from './common.ts';
 import { postColour } from './blocks.ts';
 import { restrictionView } from './restrictions.ts';
 import { vineState } from './rows.ts';
@@ -8,6 +8,10 @@ export const newRound = z.object({
   onDate: isoDate,
   people: z.array(id).min(1, 'Choose who walks.').max(20).refine((people) => new Set(people).size === people.length, 'Each person once.'),
   gate: z.string().trim().max(120).default(''),
+  /** Where the walk begins, as longitude and latitude; the block's own gate when null. */
+  gateAt: lonLat.nullable().default(null),
+  /** Back to the gate, or over at the last vine. */
+  end: z.enum(['gate', 'anywhere']).default('gate'),
   notes: z.string().trim().max(1000).default(''),
 });
 export type NewRound = z.infer<typeof newRound>;
@@ -79,6 +83,8 @@ export const fieldMeasure = z.object({
   confidence: z.number(),
   skewed: z.boolean(),
   measuredIn: z.enum(['field', 'lab']),
+  /** Clusters to take of a vine, and berries of each, where the plan says so. */
+  handful: z.object({ perVine: z.number().int(), perCluster: z.number().int().nullable() }).nullable().optional(),
 });
 export type FieldMeasure = z.infer<typeof fieldMeasure>;
 

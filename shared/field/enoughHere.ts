@@ -13,6 +13,9 @@ export interface ZoneStanding {
   readonly state: StoppingState;
 }
 
+/** What of a stop decides where a zone stands. */
+export type StandingStop = Pick<WalkStop, 'targetId' | 'zone' | 'drawOrder' | 'measures'>;
+
 export interface FieldValue {
   readonly targetId: string;
   readonly measureCode: string;
@@ -23,7 +26,7 @@ export interface FieldValue {
  * Standing of one zone and measure. Stopping early is offered only where the vines read are the first of the draw:
  * the walk goes row by row, and what one happens to have passed is no random sample.
  */
-export function standingOf(round: Pick<FieldRound, 'stops' | 'zones'>, measure: FieldMeasure, zone: number, values: readonly FieldValue[]): ZoneStanding {
+export function standingOf(round: { readonly stops: readonly StandingStop[]; readonly zones: readonly Pick<FieldRound['zones'][number], 'number' | 'vines'>[] }, measure: FieldMeasure, zone: number, values: readonly FieldValue[]): ZoneStanding {
   const stops = round.stops.filter((stop) => stop.zone === zone && stop.measures.includes(measure.code));
   const read = readStops(stops, measure.code, values);
   const vines = round.zones.find(({ number }) => number === zone)?.vines;
@@ -45,13 +48,13 @@ function sayOf({ decision, more }: StoppingState): ZoneStanding['say'] {
 }
 
 /** One value a vine: the last one typed counts. */
-function readStops(stops: readonly WalkStop[], code: string, values: readonly FieldValue[]): { stop: WalkStop; value: number }[] {
+function readStops(stops: readonly StandingStop[], code: string, values: readonly FieldValue[]): { stop: StandingStop; value: number }[] {
   const last = new Map(values.filter(({ measureCode }) => measureCode === code).map(({ targetId, value }) => [targetId, value]));
   return stops.flatMap((stop) => (last.has(stop.targetId) ? [{ stop, value: last.get(stop.targetId)! }] : []));
 }
 
 /** True when nothing was left out before the last vine read, in the order of the draw. */
-function isFirstOfDraw(read: readonly WalkStop[], all: readonly WalkStop[]): boolean {
+function isFirstOfDraw(read: readonly StandingStop[], all: readonly StandingStop[]): boolean {
   const latest = read.reduce((most, { drawOrder }) => Math.max(most, drawOrder), 0);
   return read.length > 0 && all.every(({ targetId, drawOrder }) => drawOrder > latest || read.some((stop) => stop.targetId === targetId));
 }

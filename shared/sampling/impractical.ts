@@ -28,7 +28,7 @@ export type ImpracticalOption =
   | (Outcome & { readonly kind: 'widerMargin'; readonly scale: number; readonly margins: readonly { readonly code: string; readonly margin: Margin }[] })
   | (Outcome & { readonly kind: 'lowerConfidence'; readonly confidence: number })
   | (Outcome & { readonly kind: 'poolZones'; readonly zones: readonly [string, string] })
-  | (Outcome & { readonly kind: 'divideZone'; readonly zone: string; readonly division: Division; readonly recommended: boolean });
+  | (Outcome & { readonly kind: 'divideZone'; readonly zone: string; readonly division: Division; readonly recommended: boolean; /** Layer that the cut follows, as people call it. */ readonly layerName: string });
 
 export interface ImpracticalAdvice {
   readonly zonesOver: readonly string[];
@@ -43,7 +43,7 @@ export interface AdviceQuestion {
   /** Confidence levels to fall back on, any order. */
   readonly confidences: readonly number[];
   /** Best division of zones for which one could be sought (`bestDivision`, on the zone's driving measure). */
-  readonly divisions?: readonly { readonly zone: string; readonly division: Division }[];
+  readonly divisions?: readonly { readonly zone: string; readonly division: Division; readonly layerName?: string }[];
 }
 
 /** Null when the plan is within its limits. */
@@ -131,12 +131,12 @@ function mergeMeasure(measure: PlanMeasure, { pair, vines, others }: ZonePair): 
 function divided({ plan, divisions = [], limits = DEFAULT_LIMITS }: AdviceQuestion, zonesOver: readonly string[]): ImpracticalOption[] {
   return divisions
     .filter(({ zone }) => zonesOver.includes(zone))
-    .map(({ zone, division }) => {
+    .map(({ zone, division, layerName = '' }) => {
       const present = plan.zones.find((candidate) => candidate.zone === zone)!;
       const visits = plan.visits - present.visits + division.total;
       const hours = plan.hours - present.hours * (1 - division.total / present.visits);
       const othersFit = plan.zones.every((other) => other.zone === zone || other.visits <= limits.visitsPerZone);
       const fits = othersFit && Math.max(...division.counts) <= limits.visitsPerZone && (limits.hours === null || hours <= limits.hours);
-      return { kind: 'divideZone', zone, division, recommended: division.recommended, visits, hours, saving: 1 - visits / plan.visits, fits };
+      return { kind: 'divideZone', zone, division, layerName, recommended: division.recommended, visits, hours, saving: 1 - visits / plan.visits, fits };
     });
 }

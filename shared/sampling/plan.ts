@@ -1,7 +1,8 @@
 import { confidences } from '../catalog/measures.ts';
-import type { BasisMeasure, PlanBasis, PlanChoices } from '../contracts/plans.ts';
+import type { BasisMeasure, PlanBasis, PlanChoices, ZoneDivision } from '../contracts/plans.ts';
 import { AnalysisError } from '../analysis/analysisError.ts';
 import { planForBudget, type Budget, type BudgetAnswer } from './budget.ts';
+import { handfulSeconds, handfulSpread } from './handful.ts';
 import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
 import { pilotQuotas } from './pilot.ts';
 import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
@@ -19,7 +20,8 @@ export interface PlanAnswer {
   readonly limits: PracticalLimits;
 }
 
-export function answerPlan(basis: PlanBasis, choices: PlanChoices): PlanAnswer {
+/** `divisions`: how zones that ask for too much could be divided, where that was looked into. */
+export function answerPlan(basis: PlanBasis, choices: PlanChoices, divisions: readonly ZoneDivision[] = []): PlanAnswer {
   const question = questionOf(basis, choices);
   const limits = limitsOf(basis, choices);
   if (choices.isPilot) {
@@ -27,7 +29,7 @@ export function answerPlan(basis: PlanBasis, choices: PlanChoices): PlanAnswer {
     return { question, counts: planOfVisits(question, quotas.map(({ n }) => n)), advice: null, limits };
   }
   const counts = planCounts(question);
-  return { question, counts, advice: adviseImpractical({ question, plan: counts, limits, confidences }), limits };
+  return { question, counts, advice: adviseImpractical({ question, plan: counts, limits, confidences, divisions }), limits };
 }
 
 /** The same plan turned round: what the time, vines or money give. Margins keep the proportions that were chosen. */
@@ -58,17 +60,28 @@ export function questionOf(basis: PlanBasis, choices: PlanChoices): PlanQuestion
   };
 }
 
-function measureOf(basis: PlanBasis, { isCautious }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {
+function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {
   const known = basis.measures.find(({ code }) => code === choice.code);
   if (!known) throw new AnalysisError('measure_missing', `There is no measure "${choice.code}" in use in this estate. Choose another or add it.`);
+  const pilots = afterPilot && !isPilot ? basis.zones.map((_, i) => known.pilots[i] ?? null) : [];
+  const spreads = known.spreads.map(({ kind, value, cautious }, i) => {
+    const found = pilots[i]?.spread ?? (isCautious ? cautious : value);
+    return { kind, value: inHandful(choice.spreads?.[String(basis.zones[i]!.number)] ?? found, choice) };
+  });
   return {
     code: known.code,
     margin: marginOf(known, choice),
     confidence: choice.confidence ?? known.confidence,
-    spreads: known.spreads.map(({ kind, value, cautious }) => ({ kind, value: isCautious ? cautious : value })),
+    spreads,
     expectedMeans: known.spreads.map(({ expectedMean }) => expectedMean),
-    secondsPerSample: known.secondsPerSample,
+    // A typed spread is not the pilot's, so its rule does not hold for it.
+    pilots: pilots.map((pilot, i) => (choice.spreads?.[String(basis.zones[i]!.number)] === undefined ? pilot : null)),
+    secondsPerSample: choice.secondsPerSample ?? (choice.handful ? handfulSeconds(choice.handful) : known.secondsPerSample),
   };
+}
+
+function inHandful(spread: number, { handful }: PlanChoices['measures'][number]): number {
+  return handful ? handfulSpread(spread, handful) : spread;
 }
 
 /** The margin in force: chosen for the plan, else the measure's own. */

@@ -2,7 +2,8 @@ import { AnalysisError } from '../analysis/analysisError.ts';
 import { allocationMethods, type AllocationMethodId } from './allocationMethods.ts';
 import { blockPrecision, blockSampleSize } from './blockSampleSize.ts';
 import { matchMargin, type Margin, type MatchedMargin, type Spread } from './margins.ts';
-import { ADVISED_MINIMUM, halfWidth } from './sampleSize.ts';
+import { criticalT } from './quantiles.ts';
+import { ADVISED_MINIMUM, halfWidth, steinSampleSize } from './sampleSize.ts';
 import { everyZoneCounts, leastCostForAll, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
 
 /**
@@ -26,8 +27,17 @@ export interface PlanMeasure {
   /** One per zone, in the order of the zones. */
   readonly spreads: readonly Spread[];
   readonly expectedMeans: readonly (number | null)[];
+  /** What a pilot read in each zone, where the two-stage rule decides; null or left out where it does not. */
+  readonly pilots?: readonly (PilotSpread | null)[];
   readonly secondsPerSample: number;
   readonly moneyPerSample?: number;
+}
+
+export interface PilotSpread {
+  readonly n: number;
+  readonly df: number;
+  /** In the form of the measure's spreads. */
+  readonly spread: number;
 }
 
 export interface PlanEffort {
@@ -125,6 +135,12 @@ function draftEachZone(question: PlanQuestion): Draft {
   const perMeasure = measures.map((measure) =>
     zones.map((zone, i) => {
       const matched = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
+      const pilot = measure.pilots?.[i];
+      if (pilot) {
+        const { total } = steinSampleSize({ pilotN: pilot.n, pilotDf: pilot.df, pilotSpread: matched.spread, margin: matched.margin, confidence: measure.confidence, populationSize: zone.vines });
+        const floor = Math.min(question.minimum ?? ADVISED_MINIMUM, zone.vines);
+        return { n: Math.min(Math.max(total, floor), eligible(zone)), byFloor: total < floor };
+      }
       const demand: MeasureDemand = { code: measure.code, spreads: [matched.spread], margin: matched.margin, confidence: measure.confidence };
       const [answer] = everyZoneCounts([{ vines: zone.vines, minimum: question.minimum ?? ADVISED_MINIMUM }], [demand]);
       return { n: Math.min(answer!.n, eligible(zone)), byFloor: answer!.driver === null };
@@ -199,7 +215,9 @@ function measureUp(question: PlanQuestion, draft: Draft): PlanCounts {
 
 function zoneHalfWidth(measure: PlanMeasure, { zone, i, n }: { zone: PlanZone; i: number; n: number }): number {
   const matched: MatchedMargin = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
-  const width = halfWidth({ spread: matched.spread, n, confidence: measure.confidence, populationSize: zone.vines });
+  const pilot = measure.pilots?.[i];
+  // After a pilot the interval is made with the pilot's spread and its degrees of freedom: that is what keeps the coverage.
+  const width = pilot ? criticalT(measure.confidence, pilot.df) * (matched.spread / Math.sqrt(n)) : halfWidth({ spread: matched.spread, n, confidence: measure.confidence, populationSize: zone.vines });
   // `matched.margin` may be in units while the margin is a share: back to the scale of the margin.
   return (width * measure.margin.value) / matched.margin;
 }

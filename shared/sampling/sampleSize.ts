@@ -115,6 +115,8 @@ export function sampleSizeSteps(question: SampleSizeQuestion): SampleSizeSteps {
 
 export interface PilotQuestion {
   readonly pilotN: number;
+  /** n₁ − 1 when left out; fewer when the pilot's readings are of several visits and were pooled within them. */
+  readonly pilotDf?: number;
   readonly pilotSpread: number;
   readonly margin: number;
   readonly confidence: number;
@@ -131,11 +133,11 @@ export interface PilotAnswer {
  * Stein's two-stage rule: total = max(n₁, ⌈(t·s₁/E)²⌉) with t at the pilot's n₁ − 1, not iterated; the final
  * interval uses s₁ and the same t. Covers at the stated rate whatever the true spread is, for normal data.
  */
-export function steinSampleSize({ pilotN, pilotSpread, margin, confidence, populationSize = Infinity }: PilotQuestion): PilotAnswer {
+export function steinSampleSize({ pilotN, pilotDf = pilotN - 1, pilotSpread, margin, confidence, populationSize = Infinity }: PilotQuestion): PilotAnswer {
   checkSpread(pilotSpread);
   checkMargin(margin);
   checkConfidence(confidence);
-  const unrounded = ((criticalT(confidence, pilotN - 1) * pilotSpread) / margin) ** 2;
+  const unrounded = ((criticalT(confidence, pilotDf) * pilotSpread) / margin) ** 2;
   const total = Math.min(populationSize, Math.max(pilotN, ceilGuarded(unrounded)));
   return { unrounded, total, more: total - pilotN };
 }

@@ -1,8 +1,8 @@
 import { computed, type ComputedRef, type Ref } from 'vue';
 import { AnalysisError } from '../../shared/analysis/analysisError.ts';
-import type { PlanBasis, PlanChoices } from '../../shared/contracts/plans.ts';
+import type { PlanBasis, PlanChoices, ZoneDivision } from '../../shared/contracts/plans.ts';
 import { answerBudget, answerPlan, answerTradeOff, type PlanAnswer } from '../../shared/sampling/plan.ts';
-import type { BudgetAnswer } from '../../shared/sampling/budget.ts';
+import type { Budget, BudgetAnswer } from '../../shared/sampling/budget.ts';
 import type { TradeOffCurve } from '../../shared/sampling/tradeOff.ts';
 
 export interface LivePlan {
@@ -10,20 +10,20 @@ export interface LivePlan {
   /** Why there is no answer, in the calculation's own words. */
   refusal: ComputedRef<string | null>;
   curves: (code: string) => TradeOffCurve[];
-  forHours: (hours: number) => BudgetAnswer | null;
+  forBudget: (budget: Budget) => BudgetAnswer | null;
 }
 
 /** The plan's answer while somebody moves a margin: the same calculation as the server's, in the browser. */
-export function usePlanAnswer(basis: Ref<PlanBasis | null>, choices: Ref<PlanChoices>): LivePlan {
+export function usePlanAnswer(basis: Ref<PlanBasis | null>, choices: Ref<PlanChoices>, divisions: Ref<readonly ZoneDivision[]>): LivePlan {
   const outcome = computed(() => {
     if (basis.value === null || choices.value.measures.length === 0) return { answer: null, refusal: null };
-    return attempt(() => answerPlan(basis.value!, choices.value));
+    return attempt(() => answerPlan(basis.value!, choices.value, divisions.value));
   });
   return {
     answer: computed(() => outcome.value.answer),
     refusal: computed(() => outcome.value.refusal),
     curves: (code) => (basis.value === null ? [] : (attempt(() => answerTradeOff(basis.value!, choices.value, code)).answer ?? [])),
-    forHours: (hours) => (basis.value === null || choices.value.measures.length === 0 ? null : attempt(() => answerBudget(basis.value!, choices.value, { kind: 'hours', value: hours })).answer),
+    forBudget: (budget) => (basis.value === null || choices.value.measures.length === 0 ? null : attempt(() => answerBudget(basis.value!, choices.value, budget)).answer),
   };
 }
 

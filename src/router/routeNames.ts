@@ -38,6 +38,7 @@ export const routePlaces = {
   sheets: { path: '/e/:estateId/rounds/:roundId/sheet', frame: 'office', needs: ['sheets.print', 'own'], under: 'sampling' },
   paper: { path: '/e/:estateId/rounds/:roundId/paper', frame: 'office', needs: ['readings.record', 'do'], under: 'sampling' },
   conflicts: { path: '/e/:estateId/conflicts', frame: 'office', needs: ['conflicts.settle', 'own'], under: 'sampling' },
+  measures: { path: '/e/:estateId/measures', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   restrictions: { path: '/e/:estateId/restrictions', frame: 'office', needs: ['restrictions.see', 'read'], under: 'sampling' },
   lab: { path: '/e/:estateId/lab', frame: 'office', needs: ['lab.enter', 'propose'] },
   ripeness: { path: '/e/:estateId/ripeness', frame: 'office', needs: ['results.see', 'read'] },

@@ -35,6 +35,7 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   sampling: () => import('../views/sampling/SamplingView.vue'),
   planNew: () => import('../views/sampling/PlanView.vue'),
   plan: () => import('../views/sampling/PlanView.vue'),
+  measures: () => import('../views/sampling/MeasuresView.vue'),
   targets: () => import('../views/sampling/TargetsView.vue'),
   fieldWork: () => import('../views/field/FieldWorkView.vue'),
   fieldWalk: () => import('../views/field/FieldWalkView.vue'),

@@ -1,7 +1,8 @@
 import { defineStore } from 'pinia';
 import type { z } from 'zod';
+import type { MeasureChange, MeasureView, newMeasure } from '../../shared/contracts/measures.ts';
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
-import type { NewPlan, PlanBasis, PlanChange, PlanList, PlanView } from '../../shared/contracts/plans.ts';
+import type { NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, ZoneDivision } from '../../shared/contracts/plans.ts';
 import type { FieldRound, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PersonView } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
@@ -23,14 +24,25 @@ export const useSamplingStore = defineStore('sampling', () => {
   const redraw = (estateId: string, planId: string, reason: string) => http.post<PlanView>(`${base(estateId)}/plans/${planId}/redraw`, { reason });
   const download = (estateId: string, planId: string, format: 'csv' | 'gpx') => http.download(`${base(estateId)}/plans/${planId}/export`, `plan.${format}`, { query: { format } });
 
+  const divisions = (estateId: string, zoningId: string, choices: PlanChoices) => http.post<Listed<ZoneDivision>>(`${base(estateId)}/zonings/${zoningId}/divisions`, { choices });
+  const walk = (estateId: string, planId: string, asked: { people: number; end: 'gate' | 'anywhere'; gate: string | null }) => http.get<PlanWalk>(`${base(estateId)}/plans/${planId}/walk`, { query: asked });
+  const standing = async (estateId: string, planId: string) => (await http.get<Listed<PlanStanding>>(`${base(estateId)}/plans/${planId}/standing`)).items;
+
   const rounds = async (estateId: string, planId?: string) => (await http.get<Listed<RoundSummary>>(`${base(estateId)}/rounds`, { query: { plan: planId } })).items;
   const round = (estateId: string, roundId: string) => http.get<FieldRound>(`${base(estateId)}/rounds/${roundId}`);
   const send = (estateId: string, planId: string, sent: z.input<typeof newRound>) => http.post<{ id: string }>(`${base(estateId)}/plans/${planId}/rounds`, sent);
   const callOff = (estateId: string, roundId: string) => http.patch(`${base(estateId)}/rounds/${roundId}`, { state: 'called off' });
   const sheet = (estateId: string, roundId: string, paper: 'a4' | 'letter') => http.download(`${base(estateId)}/rounds/${roundId}/sheet`, 'sheet.pdf', { query: { paper } });
 
+  const labels = (estateId: string, roundId: string, printed: { paper: 'a4' | 'letter' | 'single'; per: 'vine' | 'zone' }) => http.download(`${base(estateId)}/rounds/${roundId}/labels`, 'labels.pdf', { method: 'POST', query: printed });
+  const blankLabels = (estateId: string, printed: { paper: 'a4' | 'letter' | 'single'; count: number }) => http.download(`${base(estateId)}/labels`, 'labels.pdf', { method: 'POST', query: printed });
+
+  const measures = async (estateId: string) => (await http.get<Listed<MeasureView>>(`${base(estateId)}/measures`)).items;
+  const addMeasure = (estateId: string, made: z.input<typeof newMeasure>) => http.post<MeasureView>(`${base(estateId)}/measures`, made);
+  const changeMeasure = (estateId: string, measureId: string, changed: MeasureChange) => http.patch<MeasureView>(`${base(estateId)}/measures/${measureId}`, changed);
+
   const rows = (estateId: string, blockId: string) => http.get<BlockRowsView>(`${base(estateId)}/blocks/${blockId}/rows`);
   const people = async (estateId: string) => (await http.get<Listed<PersonView>>(`${base(estateId)}/people`)).items;
 
-  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, callOff, sheet, rows, people };
+  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, callOff, sheet, labels, blankLabels, divisions, walk, standing, measures, addMeasure, changeMeasure, rows, people };
 });

@@ -1,5 +1,3 @@
-import { parseArgs } from 'node:util';
-import { pathToFileURL } from 'node:url';
 import { randomNormal, seededRandom, shuffled, type Random } from '../../shared/analysis/random.ts';
 import { criticalZ } from '../../shared/sampling/quantiles.ts';
 import { addReading, decideStopping, NO_READINGS, type StoppingRule } from '../../shared/sampling/sequential.ts';
@@ -8,7 +6,7 @@ import { addReading, decideStopping, NO_READINGS, type StoppingRule } from '../.
  * Does stopping early keep its promise? Simulated seasons of one zone each: readings in random order, the rule asked
  * after every vine, the interval mean ± margin compared with the truth. Prints nominal against realised coverage and
  * the mean count over the ideal (the count one would take if the spread were known).
- * Run: npx tsx tests/bench/coverage.ts [--seasons 2000] [--seed 1]
+ * Run: npm run bench -- --coverage [--count 2000] [--seed 1]
  */
 export interface CoverageSetting {
   readonly fruit: 'normal' | 'rounded' | 'lognormal';
@@ -127,9 +125,4 @@ export function runCoverage({ seasons, seed }: { readonly seasons: number; reado
   const random = seededRandom(seed);
   const settings = coverageSettings().map((setting) => simulateCoverage(setting, { seasons, random }));
   return { summary: summariseCoverage(settings), settings };
-}
-
-if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
-  const { values } = parseArgs({ options: { seasons: { type: 'string', default: '2000' }, seed: { type: 'string', default: '1' } }, strict: false });
-  console.log(JSON.stringify(runCoverage({ seasons: Number(values.seasons), seed: Number(values.seed) }), null, 1));
 }

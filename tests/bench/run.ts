@@ -1,20 +1,26 @@
 /**
  * npm run bench -- [--verdict | --zones] [--count N] [--seed N]        quality on simulated blocks, a line of JSON a row
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
+ * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
+ * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
  * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}']   speed, as JSON
  */
 
 import { parseArgs } from 'node:util';
 import { benchPipeline } from './benchPipeline.ts';
+import { benchPlan } from './benchPlan.ts';
 import { benchSync } from './benchSync.ts';
 import { benchVerdict } from './benchVerdict.ts';
 import { benchZones } from './benchZones.ts';
+import { runCoverage } from './coverage.ts';
 
 const { values } = parseArgs({
   options: {
     verdict: { type: 'boolean', default: false },
     zones: { type: 'boolean', default: false },
     sync: { type: 'boolean', default: false },
+    coverage: { type: 'boolean', default: false },
+    plan: { type: 'boolean', default: false },
     count: { type: 'string' },
     seed: { type: 'string', default: '1000' },
     runs: { type: 'string', default: '3' },
@@ -30,4 +36,12 @@ const seed = Number(values.seed);
 if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed)) print(row);
 else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
+else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);
+else if (values.plan) for (const row of benchPlan(Number(values.runs))) print(row);
 else print(benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? null }));
+
+/** Every setting, then the groups. */
+function coverageRows(seasons: number): object[] {
+  const { settings, summary } = runCoverage({ seasons, seed });
+  return [...settings, ...summary];
+}

@@ -2,13 +2,17 @@ import type { Access } from '../../access/access.ts';
 import type { BasisMeasure, PlanBasis } from '../../../shared/contracts/plans.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
+import { pilotReadingsOf } from '../../../shared/sampling/pilotReadings.ts';
 import { spreadsOf } from '../../../shared/sampling/planBasis.ts';
 import type { HistoryReading } from '../../../shared/sampling/pooling.ts';
 import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { Estate } from '../../models/Estate.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Round } from '../../models/Round.ts';
 import { Season } from '../../models/Season.ts';
+import { Target } from '../../models/Target.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
@@ -31,7 +35,10 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround): P
   ]);
   const yearOf = new Map(seasons.map((season) => [season.id, Number(season.startsOn.slice(0, 4))]));
   const season = seasons.find(({ id }) => id === zoning.seasonId)!;
-  const own = historyOf(await zonedReadings(estateId, { ground, zoneOf }), ground.block.id, yearOf);
+  const zoned = await zonedReadings(estateId, { ground, zoneOf });
+  const own = historyOf(zoned, ground.block.id, yearOf);
+  const pilot = await latestPilot(estateId, { blockId: ground.block.id, seasonId: season.id });
+  const ofPilot = historyOf(zoned.filter(({ roundId }) => roundId !== null && pilot?.roundIds.has(roundId)), ground.block.id, yearOf);
   const isShort = measures.some(({ code }) => (own.get(code)?.length ?? 0) < enoughOwnReadings);
   const others = isShort ? await historyOfOtherBlocks(estateId, ground.block.id, yearOf) : new Map<string, HistoryReading[]>();
   const { floorVines, impracticalSamples, dayHours, costPerHour, currency } = estateSettings.parse(estate.settings);
@@ -48,19 +55,32 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround): P
       zones: zones.map(({ number }) => String(number)),
       season: yearOf.get(season.id)!,
       readings: [...(own.get(measure.code) ?? []), ...(others.get(measure.code) ?? [])],
+      ofPilot: ofPilot.get(measure.code) ?? [],
     })),
+    pilot: pilot === null ? null : { planId: pilot.planId, name: pilot.name, vines: pilot.vines, read: new Set(zoned.filter(({ roundId }) => roundId !== null && pilot.roundIds.has(roundId)).map(({ vineKey }) => vineKey)).size },
     settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency },
   };
 }
 
-function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[] }): BasisMeasure {
+function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[]; ofPilot: HistoryReading[] }): BasisMeasure {
   const { code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, spreadKind, spreadValue, spreadSource, typicalMean } = measure;
   return {
     code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn,
     confidence: measure.confidence as BasisMeasure['confidence'],
     tradeSource: spreadSource,
     spreads: spreadsOf({ ...history, tradeDefault: { kind: spreadKind, value: spreadValue }, typicalMean, resolution: 10 ** -decimals }),
+    pilots: pilotReadingsOf(history.ofPilot, { zones: history.zones, kind: spreadKind, season: history.season }),
   };
+}
+
+/** The newest pilot of the block in the season that was sent to people. */
+async function latestPilot(estateId: string, { blockId, seasonId }: { blockId: string; seasonId: string }): Promise<{ planId: string; name: string; vines: number; roundIds: Set<string> } | null> {
+  const pilots = await Plan.query().where({ estateId, blockId, seasonId, isPilot: true }).orderBy('createdAt', 'desc').select('id', 'name');
+  const rounds = await Round.query().where({ estateId, blockId }).whereIn('planId', pilots.map(({ id }) => id)).whereNot({ state: 'called off' }).select('id', 'planId');
+  const pilot = pilots.find(({ id }) => rounds.some(({ planId }) => planId === id));
+  if (!pilot) return null;
+  const vines = await Target.query().where({ estateId, planId: pilot.id }).resultSize();
+  return { planId: pilot.id, name: pilot.name, vines, roundIds: new Set(rounds.filter(({ planId }) => planId === pilot.id).map(({ id }) => id)) };
 }
 
 /** Readings by measure as spreads are pooled from them: one value a vine and visit, checked, in a zone, not left out. */

@@ -1,6 +1,6 @@
 import type { Point } from 'geojson';
 import type { z } from 'zod';
-import { planChoices, type PlanBasis, type PlannableZoning, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import { planBasis, planChoices, type PlanBasis, type PlannableZoning, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
@@ -60,7 +60,7 @@ export async function viewPlan(access: Access, planId: string): Promise<PlanView
     ...summary!,
     choices: planChoices.parse(plan.options),
     seed: plan.seed,
-    basis: record.basis,
+    basis: planBasis.parse(record.basis),
     draw: record.draw,
     walk: record.walk,
     targets: targets.map((target) => {

@@ -1,6 +1,6 @@
 import { estateSettings } from '../../../shared/contracts/estate.ts';
-import { planChoices, type PlanBasis } from '../../../shared/contracts/plans.ts';
-import type { FieldMeasure, FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
+import type { PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { firstOrdinal } from '../../../shared/geo/vines.ts';
 import type { Access } from '../../access/access.ts';
@@ -9,7 +9,6 @@ import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/bloc
 import { restrictionViews } from '../../ground/restrictionViews.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
-import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Person } from '../../models/Person.ts';
 import { Plan } from '../../models/Plan.ts';
 import { Reading } from '../../models/Reading.ts';
@@ -17,6 +16,7 @@ import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Target } from '../../models/Target.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { measuresOfPlan } from '../plans/standingOfPlan.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
 import type { RoundWalk, StoredStop } from './roundWalk.ts';
@@ -50,7 +50,7 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     startPostColour: block.startPostColour, endPostColour: block.endPostColour, vineOneEnd: block.vineOneEnd,
     people: shares.map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', vines: share.stops.length })),
     zones: basis.zones.map(({ number, name, colour, vines }) => ({ number, name, colour, vines, targets: stops.filter(({ targetId }) => zoneOfTarget.get(targetId) === number).length })),
-    measures: await fieldMeasures(estateId, plan),
+    measures: await measuresOfPlan(estateId, plan),
     rows: await fieldRows(estateId, ground, plan),
     stops: stopsOf(stops),
     others: me ? shares.filter((share) => share.personId !== personId).map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', stops: stopsOf(share.stops) })) : [],
@@ -66,17 +66,6 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
 function safetyOf(estate: Estate): FieldRound['safety'] {
   const { emergencyNumber, meetingPoint } = estateSettings.parse(estate.settings);
   return { emergencyNumber, meetingPoint };
-}
-
-async function fieldMeasures(estateId: string, plan: Plan): Promise<FieldMeasure[]> {
-  const chosen = planChoices.parse(plan.options).measures;
-  const rows = await MeasureRecord.query().where({ estateId }).whereIn('code', chosen.map(({ code }) => code));
-  return chosen.flatMap((choice) => {
-    const row = rows.find(({ code }) => code === choice.code);
-    if (!row) return [];
-    const { code, name, unit, decimals, minimum, maximum, skewed, measuredIn } = row;
-    return [{ code, name, unit, decimals, minimum, maximum, skewed, measuredIn, margin: choice.margin ?? row.margin, marginKind: choice.marginKind ?? row.marginKind, confidence: choice.confidence ?? row.confidence }];
-  });
 }
 
 async function fieldRows(estateId: string, ground: BlockVines, plan: Plan): Promise<FieldRow[]> {

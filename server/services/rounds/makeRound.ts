@@ -2,9 +2,10 @@ import type { Transaction } from 'objection';
 import { may } from '../../../shared/catalog/permissions.ts';
 import type { PlanBasis } from '../../../shared/contracts/plans.ts';
 import type { NewRound } from '../../../shared/contracts/rounds.ts';
+import { toUtm } from '../../../shared/geo/utm.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
-import type { ShareInput, WalkShare } from '../../ground/shareRound.ts';
+import type { SharedRound, WalkShare } from '../../ground/shareRound.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -16,6 +17,7 @@ import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Target } from '../../models/Target.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { loadPlanGround } from '../plans/planGround.ts';
+import { shareInputOf } from '../plans/walkInput.ts';
 import type { RoundWalk } from './roundWalk.ts';
 
 /** Sends a plan's vines to people for a day: the walk is shared so that loads are even, and each gets a mail. */
@@ -26,7 +28,7 @@ export async function makeRound(access: Access, planId: string, input: NewRound,
   if (plan.state === 'closed') throw new Clash('closed', `"${plan.name}" is closed. Make a new plan.`);
   const people = await walkersOf(estateId, input.people);
   const targets = await Target.query().where({ estateId, planId }).orderBy('walkOrder');
-  const shares = await sharesOf(access, plan, targets, people.length);
+  const shares = await sharesOf(access, plan, targets, { ...input, people: people.length });
   return Round.transaction(async (trx) => {
     const walk: RoundWalk = {
       shares: people.map((person, i) => ({
@@ -54,18 +56,11 @@ async function walkersOf(estateId: string, ids: string[]): Promise<Person[]> {
   });
 }
 
-async function sharesOf(access: Access, plan: Plan, targets: Target[], people: number): Promise<WalkShare[]> {
-  const { ground, gateXY } = await loadPlanGround(access.estateId, plan.zoningId);
-  const { basis } = plan.result as { basis: PlanBasis };
-  const seconds = new Map(basis.measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
-  const zoneNumber = new Map(basis.zones.map(({ id, number }) => [id, number]));
-  const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => ({
-    rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone: zoneNumber.get(zoneId) ?? 0,
-    serviceS: measureCodes.reduce((sum, code) => sum + (seconds.get(code) ?? 0), 0),
-  }));
-  if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);
-  const request: ShareInput = { rows: ground.rows, vines, gateXY, people };
-  return runCompute<WalkShare[]>('shareRound', request, { lane: 'quick' });
+async function sharesOf(access: Access, plan: Plan, targets: Target[], { people, gateAt, end }: { people: number } & Pick<NewRound, 'gateAt' | 'end'>): Promise<WalkShare[]> {
+  const planGround = await loadPlanGround(access.estateId, plan.zoningId);
+  const gateXY = gateAt === null ? planGround.gateXY : toUtm(gateAt, planGround.ground.block.epsg);
+  const { walks } = await runCompute<SharedRound>('shareRound', shareInputOf(planGround, plan, targets, { gateXY, people, end }), { lane: 'quick' });
+  return walks;
 }
 
 interface Assignment {

@@ -41,3 +41,11 @@ export function spreadEvidence(spread: BasisSpread, measure: BasisMeasure, words
 export function widestSpread(measure: BasisMeasure): BasisSpread {
   return measure.spreads.reduce((widest, spread) => (spread.value > widest.value ? spread : widest));
 }
+
+/** "2024–2026" for seasons in a row, else the list. */
+export function seasonWords(seasons: readonly number[], list: (years: string[]) => string): string {
+  const years = [...seasons].sort((a, b) => a - b);
+  const [first, last] = [years[0], years.at(-1)];
+  if (first === undefined || last === undefined) return '';
+  return years.length > 1 && last - first === years.length - 1 ? `${first}–${last}` : list(years.map(String));
+}

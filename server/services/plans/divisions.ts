@@ -1,0 +1,106 @@
+import { decodeFloatCells, decodeLabels } from '../../../shared/analysis/cellBytes.ts';
+import { cellAt, type Cells, type Grid, type Labels } from '../../../shared/analysis/grid.ts';
+import { rowRuns, snapToRows } from '../../../shared/analysis/snapToRows.ts';
+import { layerType } from '../../../shared/catalog/layerTypes.ts';
+import type { PlanBasis, PlanChoices, ZoneDivision } from '../../../shared/contracts/plans.ts';
+import { bestDivision, partMeans, type DivideQuestion, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
+import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
+import type { Access } from '../../access/access.ts';
+import { gridOf } from '../../ground/blockVines.ts';
+import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
+import { BlockLayer } from '../../models/BlockLayer.ts';
+import { Layer } from '../../models/Layer.ts';
+import { loadPlanBasis } from './planBasis.ts';
+import { loadPlanGround, type PlanGround } from './planGround.ts';
+
+/** Shortest run of vines along a row that a divided zone gives away, in metres. */
+const shortestRunM = 20;
+
+interface LayerOnVines {
+  id: string;
+  name: string;
+  cells: Cells;
+  /** Value at each vine of the table; NaN where the layer says nothing. */
+  atVines: Float64Array;
+}
+
+/** For each zone that the plan asks too much of: the cut along one layer that saves most, where the readings suffice to judge. */
+export async function divisionsOf(access: Access, zoningId: string, choices: PlanChoices): Promise<ZoneDivision[]> {
+  const { estateId } = access;
+  const planGround = await loadPlanGround(estateId, zoningId);
+  const basis = await loadPlanBasis(estateId, planGround);
+  const answer = answerPlan(basis, choices);
+  if (answer.advice === null) return [];
+  const [layers, readings] = await Promise.all([layersOnVines(estateId, planGround), zonedReadings(estateId, planGround)]);
+  const usable = readings.filter(({ vine, excludedReason, state }) => vine >= 0 && excludedReason === null && state !== 'provisional');
+  return answer.advice.zonesOver.flatMap((zone) => divideZone({ zone, basis, answer, choices, layers, readings: usable, planGround }) ?? []);
+}
+
+interface DivideAsk {
+  zone: string;
+  basis: PlanBasis;
+  answer: PlanAnswer;
+  choices: PlanChoices;
+  layers: LayerOnVines[];
+  readings: ZonedReading[];
+  planGround: PlanGround;
+}
+
+function divideZone(ask: DivideAsk): ZoneDivision | null {
+  const { zone, answer, layers, readings, planGround } = ask;
+  const at = answer.question.zones.findIndex((one) => one.zone === zone);
+  const code = answer.counts.zones[at]!.drivers[0];
+  if (code === undefined) return null;
+  const own = readings.filter((reading) => String(reading.zone) === zone && reading.measureCode === code);
+  const ofZone = [...planGround.zoneOf.keys()].filter((vine) => String(planGround.zoneOf[vine]) === zone);
+  let best: { layer: LayerOnVines; division: ZoneDivision['division']; means: readonly [number, number] } | null = null;
+  for (const layer of layers) {
+    const located: LocatedReading[] = own.flatMap(({ value, visit, vine }) => (Number.isNaN(layer.atVines[vine]!) ? [] : [{ value, visit, layer: layer.atVines[vine]! }]));
+    const layerAtVines = ofZone.map((vine) => layer.atVines[vine]!).filter((value) => !Number.isNaN(value));
+    const division = bestDivision({ ...demandOf(ask, at, code), readings: located, layerAtVines });
+    if (division !== null && (best === null || division.total < best.division.total)) best = { layer, means: partMeans(located, division.cut), division: { ...division, vines: [...division.vines], spreads: [...division.spreads], counts: [...division.counts] } };
+  }
+  if (best === null) return null;
+  const { layer, division, means } = best;
+  const newZone = Math.max(...ask.basis.zones.map(({ number }) => number)) + 1;
+  return { zone, measureCode: code, layerId: layer.id, layerName: layer.name, division, means: [...means], newZone, rows: rowsOfPart(planGround, { zone: Number(zone), newZone, layer, cut: division.cut }) };
+}
+
+/** What the measure that drives the zone asks for, on the scale its spread is kept in. */
+function demandOf({ answer, choices, basis }: DivideAsk, at: number, code: string): Omit<DivideQuestion, 'readings' | 'layerAtVines'> {
+  const measure = answer.question.measures.find((one) => one.code === code)!;
+  const { kind } = measure.spreads[at]!;
+  const mean = Math.abs(measure.expectedMeans[at] ?? Number.NaN);
+  const isShare = measure.margin.kind === 'relative';
+  const margin = kind === 'cv' ? (isShare ? measure.margin.value : measure.margin.value / mean) : isShare ? measure.margin.value * mean : measure.margin.value;
+  const presentCount = answer.counts.zones[at]!.counts[answer.question.measures.indexOf(measure)]!;
+  return { margin, confidence: measure.confidence, kind, presentCount, wanted: choices.question === 'block' ? 'whole' : 'parts', minimum: choices.minimum ?? basis.settings.floorVines };
+}
+
+/** Layers of numbers that lie on the block as it is now. */
+async function layersOnVines(estateId: string, { ground }: PlanGround): Promise<LayerOnVines[]> {
+  const grid = gridOf(ground);
+  const placed = await BlockLayer.query().where({ estateId, blockId: ground.block.id, gridKey: grid.key });
+  const layers = await Layer.query().where({ estateId }).whereNull('retiredAt').findByIds(placed.map(({ layerId }) => layerId));
+  return layers.filter(({ type }) => layerType(type).resampling !== 'class').map(({ id, name }) => {
+    const cells = decodeFloatCells(placed.find(({ layerId }) => layerId === id)!.cells);
+    return { id, name, cells, atVines: Float64Array.from(ground.vines.x, (x, vine) => valueAt(grid, cells, [x, ground.vines.y[vine]!])) };
+  });
+}
+
+function valueAt(grid: Grid, cells: Cells, xy: [number, number]): number {
+  const cell = cellAt(grid, xy);
+  return cell < 0 ? Number.NaN : cells[cell]!;
+}
+
+/** The second part as runs of vines along the rows, none shorter than a crew would stop for. */
+function rowsOfPart({ zoning, ground, zoneOf }: PlanGround, part: { zone: number; newZone: number; layer: LayerOnVines; cut: number }): ZoneDivision['rows'] {
+  const grid = gridOf(ground);
+  const labels = new Uint8Array(decodeLabels(zoning.labels!)) as Labels;
+  labels.forEach((label, cell) => {
+    if (label === part.zone && part.layer.cells[cell]! > part.cut) labels[cell] = part.newZone;
+  });
+  const { vineLabels } = snapToRows({ grid, labels, rows: ground.rows, vines: ground.vines }, { mode: 'partRow', shortestRunM });
+  const given = Uint8Array.from(vineLabels, (label, vine) => (label === part.newZone && zoneOf[vine] === part.zone ? 1 : 0));
+  return rowRuns(ground.vines, given).filter(({ label }) => label === 1).map(({ rowIndex, fromOrdinal, toOrdinal }) => ({ rowId: ground.stored[rowIndex]!.id, from: fromOrdinal, to: toOrdinal }));
+}

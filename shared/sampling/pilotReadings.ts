@@ -1,0 +1,18 @@
+import { groupReadings, poolGroups, type HistoryReading } from './pooling.ts';
+
+/** What a pilot says of a measure in one zone: readings, degrees of freedom and spread, pooled within its visits. */
+export interface PilotReadings {
+  readonly n: number;
+  readonly df: number;
+  readonly spread: number;
+}
+
+/** One entry a zone; null where fewer than two vines were read. No season weighs less: a pilot is of one season. */
+export function pilotReadingsOf(readings: readonly HistoryReading[], ask: { readonly zones: readonly string[]; readonly kind: 'sd' | 'cv'; readonly season: number }): (PilotReadings | null)[] {
+  const { zones, kind, season } = ask;
+  const groups = groupReadings(readings);
+  return zones.map((zone) => {
+    const { n, df, spread } = poolGroups(groups.filter((group) => group.zone === zone), { kind, season, seasonWeight: 1 });
+    return df >= 1 ? { n, df: Math.round(df), spread } : null;
+  });
+}

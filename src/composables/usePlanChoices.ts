@@ -1,0 +1,39 @@
+import type { Ref } from 'vue';
+import type { PlanBasis, PlanChoices, PlannedMeasureChoice } from '../../shared/contracts/plans.ts';
+import type { ImpracticalOption } from '../../shared/sampling/impractical.ts';
+
+export interface PlanEdits {
+  toggle: (code: string) => void;
+  adjust: (code: string, facts: Partial<PlannedMeasureChoice>) => void;
+  /** Null goes back to the spread that was found. */
+  setSpread: (code: string, zone: number, spread: number | null) => void;
+  /** All margins by one factor, so that they keep the proportions that were asked for. */
+  scaleMargins: (factor: number) => void;
+  takeAdvice: (option: ImpracticalOption) => void;
+  set: (facts: Partial<PlanChoices>) => void;
+}
+
+/** What can be done to the choices of a plan; each puts new choices in place of the old. */
+export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanChoices>): PlanEdits {
+  const set = (facts: Partial<PlanChoices>) => (choices.value = { ...choices.value, ...facts });
+  const measures = (change: (choice: PlannedMeasureChoice) => PlannedMeasureChoice) => set({ measures: choices.value.measures.map(change) });
+  const adjust = (code: string, facts: Partial<PlannedMeasureChoice>) => measures((choice) => (choice.code === code ? { ...choice, ...facts } : choice));
+  const marginOf = ({ code, margin }: PlannedMeasureChoice) => margin ?? basis.value!.measures.find((measure) => measure.code === code)!.margin;
+
+  function toggle(code: string): void {
+    const rest = choices.value.measures.filter((choice) => choice.code !== code);
+    set({ measures: rest.length === choices.value.measures.length ? [...rest, { code }] : rest });
+  }
+  function setSpread(code: string, zone: number, spread: number | null): void {
+    const typed = { ...choices.value.measures.find((choice) => choice.code === code)?.spreads };
+    if (spread === null) delete typed[String(zone)];
+    else typed[String(zone)] = spread;
+    adjust(code, { spreads: Object.keys(typed).length > 0 ? typed : undefined });
+  }
+  const scaleMargins = (factor: number) => measures((choice) => ({ ...choice, margin: marginOf(choice) * factor }));
+  function takeAdvice(option: ImpracticalOption): void {
+    if (option.kind === 'widerMargin') scaleMargins(option.scale);
+    if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));
+  }
+  return { toggle, adjust, setSpread, scaleMargins, takeAdvice, set };
+}

@@ -1,0 +1,131 @@
+import { describe, expect, it } from 'vitest';
+import { handful, planChoices, type PlanBasis } from '../../shared/contracts/plans.ts';
+import { adviseHandful, betweenVines, handfulSeconds, handfulSpread } from '../../shared/sampling/handful.ts';
+import { blockMaths, zoneMaths } from '../../shared/sampling/maths.ts';
+import { pilotReadingsOf } from '../../shared/sampling/pilotReadings.ts';
+import { answerBudget, answerPlan } from '../../shared/sampling/plan.ts';
+
+const spread = (value: number) => ({ kind: 'sd' as const, value, cautious: value * 1.2, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, expectedMean: 22, isMeanAssumed: true });
+/** Sugar in zones of 900, 600 and 300 vines with spreads 1.1, 0.8, 1.5: the worked example of stratified sampling in allocate.test.ts. */
+function basis(pilots: PlanBasis['measures'][number]['pilots'] = [null, null, null]): PlanBasis {
+  return {
+    zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
+    zones: [900, 600, 300].map((vines, i) => ({ id: '', number: i + 1, name: '', colour: null, vines, eligible: vines })),
+    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', tradeSource: '', spreads: [1.1, 0.8, 1.5].map(spread), pilots }],
+    settings: { floorVines: 2, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' },
+  };
+}
+const choices = (over: object = {}) => planChoices.parse({ measures: [{ code: 'brix', ...over }] });
+const visits = (ask: PlanBasis, how = choices()) => answerPlan(ask, how).counts.zones.map((zone) => zone.visits);
+
+describe('a plan after its pilot', () => {
+  // Stein 1945; Cochran 1977 §4.7: n₁ 10, s₁ 1.2, E 0.5, 95 % → 29.475965 → 30; n₁ 15, s₁ 0.5 → stays at 15.
+  const read = basis([{ n: 10, df: 9, spread: 1.2 }, { n: 15, df: 14, spread: 0.5 }, null]);
+
+  it('takes the two-stage rule where the pilot read, and the assumed spread elsewhere', () => {
+    expect(visits(read, planChoices.parse({ ...choices(), afterPilot: true }))).toEqual([30, 15, visits(basis())[2]]);
+  });
+
+  it('keeps the width that the rule promises: t of the pilot, its spread, all the vines', () => {
+    const { counts } = answerPlan(read, planChoices.parse({ ...choices(), afterPilot: true }));
+    // t(0.975, 9) = 2.262157 (R): 2.262157 · 1.2 / √30.
+    expect(counts.zones[0]!.halfWidths[0]).toBeCloseTo((2.262157163 * 1.2) / Math.sqrt(30), 8);
+    expect(counts.zones[0]!.halfWidths[0]).toBeLessThanOrEqual(0.5);
+  });
+
+  it('counts with the pilot only when asked, and never with a spread that somebody typed', () => {
+    expect(visits(read)).toEqual(visits(basis()));
+    expect(visits(read, planChoices.parse({ measures: [{ code: 'brix', spreads: { 1: 1.1 } }], afterPilot: true }))[0]).toBe(visits(basis())[0]);
+  });
+
+  it('pools the pilot within its visits and says nothing of a zone with one vine', () => {
+    const reading = (zone: string, visit: string, value: number) => ({ block: 'b', zone, season: 2026, visit, value });
+    // Two visits, each with variance 2: pooled 2, two degrees of freedom; the rise between the visits is no spread.
+    const readings = [reading('1', 'a', 20), reading('1', 'a', 22), reading('1', 'b', 30), reading('1', 'b', 32), reading('2', 'a', 21)];
+    const [first, second] = pilotReadingsOf(readings, { zones: ['1', '2'], kind: 'sd', season: 2026 });
+    expect(first).toMatchObject({ n: 4, df: 2 });
+    expect(first!.spread).toBeCloseTo(Math.SQRT2, 12);
+    expect(second).toBeNull();
+  });
+});
+
+describe('assumptions that a planner changes', () => {
+  it('a typed spread changes its zone and no other', () => {
+    const [one, two, three] = visits(basis());
+    const typed = visits(basis(), choices({ spreads: { 2: 1.5 } }));
+    expect([typed[0], typed[2]]).toEqual([one, three]);
+    expect(typed[1]).toBeGreaterThan(two!);
+  });
+
+  it('both directions agree: the hours, vines or money of a plan buy its margins', () => {
+    const plan = answerPlan(basis(), choices());
+    for (const [kind, value] of [['hours', plan.counts.hours], ['vines', plan.counts.visits], ['money', plan.counts.money]] as const) {
+      const bought = answerBudget(basis(), choices(), { kind, value });
+      expect(bought.kind === 'plan' && bought.plan.visits).toBe(plan.counts.visits);
+      expect(bought.kind === 'plan' && bought.scale).toBeLessThanOrEqual(1 + 1e-4);
+    }
+  });
+});
+
+describe('how much of each vine', () => {
+  // Rankine, Cellier & Boehm 1962: S_b² 1.0625, S_w² 0.50, so 1.25 for one cluster a vine.
+  const rankine = handful.parse({ withinVine: Math.sqrt(0.5) });
+  const whole = Math.sqrt(1.0625 + 0.5);
+
+  it('finds the part between vines and the spread with more clusters', () => {
+    expect(betweenVines(whole, rankine)).toBeCloseTo(1.0625, 12);
+    expect(handfulSpread(whole, rankine)).toBeCloseTo(whole, 12);
+    expect(handfulSpread(whole, { ...rankine, perVine: 2 })).toBeCloseTo(Math.sqrt(1.0625 + 0.25), 12);
+    expect(handfulSpread(whole, { ...rankine, perVine: 2, nowPerVine: 2 })).toBeCloseTo(whole, 12);
+    // The published statement: as good a mean from 1 cluster on each of 25 vines as from 2 on each of 21.
+    expect((1.0625 + 0.5) / 25).toBeCloseTo(handfulSpread(whole, { ...rankine, perVine: 2 }) ** 2 / 21, 12);
+  });
+
+  it('takes one cluster where walking costs four times a cluster, as those figures say', () => {
+    // m = √(0.5/1.0625 · 4) = 1.372 < 1.5.
+    const split = adviseHandful({ spread: whole, handful: { ...rankine, secondsPerCluster: 10 }, margin: 0.5, confidence: 0.95, secondsPerVine: 40 });
+    expect(split.best.perVine).toBeCloseTo(1.371989, 5);
+    expect(split.perVine).toBe(1);
+  });
+
+  it('takes four clusters at 90 s a vine, 8 s a cluster and a spread ratio of 1.2', () => {
+    const within = handful.parse({ withinVine: 1.2, secondsPerCluster: 8 });
+    const split = adviseHandful({ spread: Math.sqrt(1 + 1.44), handful: within, margin: 0.5, confidence: 0.95, secondsPerVine: 90 });
+    expect(split.best.perVine).toBeCloseTo(4.0249, 4);
+    expect([3, 4]).toContain(split.perVine);
+  });
+
+  it('changes the count and the time of the plan', () => {
+    const one = answerPlan(basis(), choices());
+    const two = answerPlan(basis(), choices({ handful: { perVine: 4, withinVine: 0.7, secondsPerCluster: 15 } }));
+    expect(two.counts.visits).toBeLessThan(one.counts.visits);
+    expect(two.question.measures[0]!.secondsPerSample).toBe(60);
+    expect(handfulSeconds(handful.parse({ withinVine: 1, perVine: 3, perCluster: 10, secondsPerCluster: 5, secondsPerBerry: 2 }))).toBe(75);
+  });
+
+  it('says in words when the clusters of a vine are said to differ more than all there is', () => {
+    expect(() => handfulSpread(1, handful.parse({ withinVine: 1.1 }))).toThrow(/nothing between vines/);
+  });
+});
+
+describe('the working that is shown', () => {
+  it('gives each zone the numbers of its own t search', () => {
+    // Cochran 1977 §4.6 with the t search: s 1.1 in 900 vines, E 0.5, 95 % → 21; without the population 22.
+    const [first] = zoneMaths(answerPlan(basis(), choices()).question, 'brix');
+    expect(first).toMatchObject({ n: 21, df: 20, vines: 900, limitedBy: 'margin', pilot: null });
+    expect(first!.t).toBeCloseTo(2.085963, 6);
+    expect(first!.halfWidth).toBeLessThanOrEqual(0.5);
+    expect(first!.oneFewer).toBeGreaterThan(0.5);
+  });
+
+  it('gives the block its weighted variance', () => {
+    const ask = planChoices.parse({ ...choices(), question: 'block', allocation: 'spread' });
+    const { question, counts } = answerPlan(basis(), ask);
+    const block = blockMaths(question, counts, 'brix')!;
+    expect(block.zones.map(({ weight }) => weight)).toEqual([0.5, 600 / 1800, 300 / 1800]);
+    const byHand = block.zones.reduce((sum, { weight, spread: s, n, vines }) => sum + weight ** 2 * s ** 2 * (1 / n - 1 / vines), 0);
+    expect(block.variance).toBeCloseTo(byHand, 12);
+    expect(block.halfWidth).toBeCloseTo(block.t * Math.sqrt(byHand), 10);
+    expect(block.halfWidth).toBeLessThanOrEqual(0.5);
+  });
+});

@@ -1,8 +1,10 @@
 import type { Manifest } from './manifest.mjs';
 
-export function restoreArchive(options: {
-  archive: string;
-  database: { url: string; adminUrl: string; addExtensions: (url: string) => Promise<unknown> };
-  filesFolder: string;
-  migrate: (url: string) => Promise<unknown>;
-}): Promise<Manifest>;
+interface OpenedDatabase {
+  url: string;
+  adminUrl: string;
+  addExtensions: (url: string) => Promise<unknown>;
+}
+
+export function restoreArchive(options: { archive: string; database: OpenedDatabase; filesFolder: string; migrate: (url: string) => Promise<unknown> }): Promise<Manifest>;
+export function tryArchive(options: { archive: string; database: OpenedDatabase; filesFolder: string }): Promise<Manifest>;

@@ -91,6 +91,29 @@ function removeOtherFiles(manifest, filesFolder) {
 }
 
 /**
+ * Reads an archive back for a trial: unpacks and checks it, restores its database beside the present one, counts, and
+ * takes all of it away again. Nothing in use is touched. Throws with the reason when the backup would be of no use.
+ */
+export async function tryArchive({ archive, database, filesFolder }) {
+  const manifest = await checkArchive(archive);
+  await checkVersions(manifest, maintenance(database.adminUrl));
+  const unpacked = `${filesFolder}.trial`;
+  rmSync(unpacked, { recursive: true, force: true });
+  let fresh = null;
+  try {
+    await unpack(archive, unpacked);
+    fresh = await makeFresh(database);
+    const freshUrl = withDatabase(database.url, fresh);
+    await restoreDump(freshUrl, path.join(unpacked, dumpName));
+    await compareCounts(freshUrl, manifest.database.tables);
+    return manifest;
+  } finally {
+    if (fresh !== null) await dropDatabase(database.adminUrl, fresh);
+    rmSync(unpacked, { recursive: true, force: true });
+  }
+}
+
+/**
  * Replaces database and uploaded files by those of an archive. Nothing in use is touched until the archive is unpacked
  * and checked, its database restored beside the present one, counted, and brought to the present schema by `migrate(url)`.
  * Interrupted at any point, the old or the new state is whole. Resolves to the manifest.

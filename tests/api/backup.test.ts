@@ -76,6 +76,21 @@ test('a backup brings back rows and files exactly, and the state before the rest
   expect(existsSync(join(filesFolder, 'cd34'))).toBe(false);
 }, scriptsMs);
 
+test('a backup is noted for the owner, and so is reading one back for a trial, which touches nothing', async () => {
+  await npmRun('backup', archive);
+  const drilled = await npmRun('backup', '--drill', archive);
+  expect(drilled.stdout).toContain('can be restored');
+  const whole = readFileSync(archive);
+  const damaged = Buffer.from(whole);
+  damaged[damaged.indexOf('elevation')]! ^= 1;
+  writeFileSync(archive, damaged);
+  await expect(npmRun('backup', '--drill', archive)).rejects.toThrow(/damaged/);
+  expect(await query(database.url, 'select kind, ok, file_total::int as files from backups order by at')).toEqual([{ kind: 'backup', ok: true, files: 2 }, { kind: 'drill', ok: true, files: 2 }]);
+  expect(await estateNames()).toEqual(['Kept', `Écart 'n°2'`]);
+  expect(await otherDatabases()).toEqual([]);
+  expect(readdirSync(folder).sort()).toEqual(['estate.tar', 'files']);
+}, scriptsMs);
+
 test('geometry, the queue and the schema versions survive, sign-ins do not', async () => {
   await query(database.url, `select graphile_worker.add_job('work', '{"jobId": "1"}')`);
   await query(database.url, `create table outline_probe (outline geometry(Polygon, 4326))`);

@@ -4,7 +4,7 @@ import { randomUUID } from 'node:crypto';
 /** Which table holds the thing that a parameter of an address names. */
 export const tableOf: Record<string, string> = {
   personId: 'people', invitationId: 'invitations', jobId: 'jobs', measureId: 'measures', restrictionId: 'entry_restrictions', readingId: 'readings', conflictId: 'reading_conflicts',
-  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos',
+  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags',
 };
 
 const outline = 'SRID=4326;MULTIPOLYGON(((-7.51 38.61,-7.50 38.61,-7.50 38.62,-7.51 38.62,-7.51 38.61)))';
@@ -31,6 +31,7 @@ export async function layOneOfEach(knex: Knex, estateId: string, personId: strin
   const planId = await put('plans', { blockId, zoningId, seasonId, name: 'Wall', options: '{}', result: '{}', seed: 1, engineVersion: '1' });
   await put('rounds', { planId, blockId, onDate: '2026-09-01' });
   await put('readings', { id: randomUUID(), seasonId, blockId, measureCode: 'brix', value: 22, unit: '°Brix', takenAt: '2026-08-01', source: 'field' });
+  await put('bags', { code: 'WLLWLL' });
   await put('reading_conflicts', { kind: 'sameVine', readingIds: [ids.get('readings')!] });
   await put('phones', { deviceId: randomUUID(), personId, lastContactAt: '2026-08-01' });
   const rowId = await put('block_rows', { blockId, ordinal: 1, label: '1', pieces: '[]', vineCount: 1, line: knex.raw("ST_GeomFromText('MULTILINESTRING((-7.51 38.61,-7.50 38.61))', 4326)") });

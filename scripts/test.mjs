@@ -75,7 +75,7 @@ async function runAll(filter, { workFolder, keep }) {
   const existing = process.env.PATCHROW_TEST_DATABASE;
   const { url } = existing ? { url: existing } : await keep(startTestCluster());
   const reportFile = path.join(workFolder, 'report.json');
-  const env = { ...process.env, NODE_ENV: 'test', PATCHROW_TEST_DATABASE: url };
+  const env = { ...process.env, NODE_ENV: 'test', PATCHROW_TEST_DATABASE: url, PATCHROW_TEST_FILES: workFolder };
   delete env.DATABASE_URL; // The tests never touch a real database.
   const vitestFailed = await runVitest(filter, { env, reportFile, keep });
   const report = existsSync(reportFile) ? JSON.parse(readFileSync(reportFile, 'utf8')) : null;

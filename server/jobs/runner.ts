@@ -3,6 +3,7 @@ import { problemOf } from '../errors.ts';
 import { log } from '../log.ts';
 import { Job } from '../models/Job.ts';
 import { handlers } from './handlers.ts';
+import { announceRunner } from './runnerPresence.ts';
 
 /** Thrown inside a handler when somebody cancelled the job; nothing of it is kept. */
 export class JobCancelled extends Error {}
@@ -15,7 +16,8 @@ export interface JobContext {
 
 /** Takes jobs from the queue until stopped. Several processes may run this at once. */
 export async function startRunner(databaseUrl: string): Promise<Runner> {
-  return run({
+  const withdraw = await announceRunner(databaseUrl);
+  const runner = await run({
     connectionString: databaseUrl,
     concurrency: 2,
     noHandleSignals: true,
@@ -29,6 +31,8 @@ export async function startRunner(databaseUrl: string): Promise<Runner> {
       },
     },
   });
+  void runner.promise.then(withdraw, withdraw).catch((error: unknown) => log.error('queue', error));
+  return runner;
 }
 
 async function workOn(jobId: string, { lastTry }: { lastTry: boolean }): Promise<void> {

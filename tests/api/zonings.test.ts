@@ -213,6 +213,19 @@ describe('a zoning that does not come to its end', () => {
     expect((await view(zoningId)).problem).toMatch(/cells cannot be read.*Import the layer again/);
     await expectNothing(zoningId);
   });
+
+  it('is taken up by the next process when the one that worked on it was killed', async () => {
+    const { jobId } = await ask();
+    // What a killed process leaves behind: a lock of a worker that is no more.
+    await Job.knex().raw(`update graphile_worker._private_jobs set locked_by = 'worker-of-the-dead', locked_at = now(), attempts = 1 where payload->>'jobId' = ?`, [jobId]);
+    await Job.query().findById(jobId).patch({ state: 'running' });
+    const runner = await startRunner(app.config.databaseUrl);
+    try {
+      expect((await jobEnd(agronomist, base(), jobId)).state).toBe('done');
+    } finally {
+      await runner.stop();
+    }
+  });
 });
 
 describe('a draft', () => {

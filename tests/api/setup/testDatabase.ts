@@ -10,9 +10,9 @@ export interface TestDatabase {
 }
 
 /** A database of its own for a test file, cloned from the template in some 50 ms. */
-export async function createTestDatabase(): Promise<TestDatabase> {
+export async function createTestDatabase(template = inject('templateDatabase')): Promise<TestDatabase> {
   const name = `test_${randomBytes(6).toString('hex')}`;
-  await onServer(`create database ${name} template ${inject('templateDatabase')} strategy file_copy`);
+  await onServer(`create database ${name} template ${template} strategy file_copy`);
   const url = new URL(inject('testServerUrl'));
   url.pathname = `/${name}`;
   return { url: url.href, drop: () => onServer(`drop database if exists ${name} with (force)`) };

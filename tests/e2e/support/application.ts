@@ -1,10 +1,11 @@
 import { spawn, type ChildProcess } from 'node:child_process';
 import { once } from 'node:events';
-import { mkdtempSync, rmSync } from 'node:fs';
+import { cpSync, mkdtempSync, rmSync } from 'node:fs';
 import { createServer } from 'node:net';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { chromium, type Browser, type BrowserContext, type Page } from 'playwright-core';
+import { inject } from 'vitest';
 import { createTestDatabase } from '../../api/setup/testDatabase.ts';
 
 const root = resolve(import.meta.dirname, '../../..');
@@ -15,16 +16,18 @@ export interface Application {
   browser: Browser;
   /** A person's own browser: signs in through the door and is somewhere in the estate. */
   signIn: (role: string, options?: { phone?: boolean }) => Promise<{ page: Page; context: BrowserContext; estateId: string }>;
+  /** A browser of somebody who has not signed in. */
+  visit: (options?: { phone?: boolean }) => Promise<{ page: Page; context: BrowserContext }>;
   close: () => Promise<void>;
 }
 
 /** The built application with the demo estate, as npm start serves it, and a headless browser beside it. */
 export async function startApplication(): Promise<Application> {
-  const database = await createTestDatabase();
+  const database = await createTestDatabase(inject('demoDatabase'));
   const folder = mkdtempSync(join(tmpdir(), 'patchrow-e2e-'));
+  cpSync(inject('demoFiles'), folder, { recursive: true });
   const port = await freePort();
   const env = { ...process.env, NODE_ENV: 'development', DATABASE_URL: database.url, PORT: String(port), PATCHROW_DATA: folder, PATCHROW_DEMO: '1', LOG_LEVEL: 'error', SIGN_IN_TRIES: '1000' };
-  await runToEnd(join(root, 'dist/server/cli/seedDemo.js'), env);
   const server = spawn(process.execPath, [join(root, 'dist/server/server.js')], { env, stdio: ['ignore', 'ignore', 'inherit'] });
   const url = `http://127.0.0.1:${port}`;
   await answers(url);
@@ -33,6 +36,7 @@ export async function startApplication(): Promise<Application> {
     url,
     browser,
     signIn: (role, options) => signIn(browser, url, { role, ...options }),
+    visit: (options) => visit(browser, options),
     close: async () => {
       await browser.close();
       await stop(server);
@@ -42,22 +46,21 @@ export async function startApplication(): Promise<Application> {
   };
 }
 
-async function signIn(browser: Browser, url: string, { role, phone = false }: { role: string; phone?: boolean }): Promise<{ page: Page; context: BrowserContext; estateId: string }> {
+async function visit(browser: Browser, { phone = false }: { phone?: boolean } = {}): Promise<{ page: Page; context: BrowserContext }> {
   const context = await browser.newContext({ locale: 'en-GB', viewport: phone ? { width: 390, height: 844 } : { width: 1440, height: 900 }, ...(phone ? { hasTouch: true } : {}) });
   const page = await context.newPage();
   page.setDefaultTimeout(45_000);
+  return { page, context };
+}
+
+async function signIn(browser: Browser, url: string, { role, ...options }: { role: string; phone?: boolean }): Promise<{ page: Page; context: BrowserContext; estateId: string }> {
+  const { page, context } = await visit(browser, options);
   await page.goto(`${url}/sign-in`);
   await page.getByLabel('E-mail').fill(`${role}@demo.example`);
   await page.locator('input[type=password]').fill('patchrow-demo');
   await page.locator('form button[type=submit]').click();
   await page.waitForURL(/\/e\/[0-9a-f-]{36}\//);
   return { page, context, estateId: /\/e\/([0-9a-f-]{36})\//.exec(page.url())![1]! };
-}
-
-async function runToEnd(file: string, env: NodeJS.ProcessEnv): Promise<void> {
-  const child = spawn(process.execPath, [file], { env, stdio: ['ignore', 'ignore', 'inherit'] });
-  const [code] = (await once(child, 'exit')) as [number];
-  if (code !== 0) throw new Error(`${file} ended with ${code}`);
 }
 
 async function answers(url: string): Promise<void> {

@@ -1,0 +1,89 @@
+import { mkdirSync, readdirSync, readFileSync } from 'node:fs';
+import { join } from 'node:path';
+import AxeBuilder from '@axe-core/playwright';
+import type { BrowserContext, Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { views } from '../../src/router/views.ts';
+import { startApplication, type Application } from './support/application.ts';
+import { findIds, placesWithViews, type Place } from './support/places.ts';
+
+/**
+ * Every screen of the demo estate at three sizes, light and dark: something is there, nothing runs out of the page, no key
+ * stands for a text, nothing fails in the console, axe finds no serious fault. PATCHROW_SCREENS names a folder that keeps the pictures.
+ */
+
+const sizes = [{ width: 1440, height: 900 }, { width: 1024, height: 768 }, { width: 390, height: 844 }] as const;
+const themes = ['light', 'dark'] as const;
+const picturesFolder = process.env.PATCHROW_SCREENS;
+const features = readdirSync(join(import.meta.dirname, '../../src/locales/en')).map((file) => file.replace('.json', ''));
+const bareKey = new RegExp(`^(${features.join('|')})\\.[a-zA-Z]+(\\.[a-zA-Z]+)*$`, 'm');
+
+type Theme = (typeof themes)[number];
+let app: Application;
+let places: Place[] = [];
+const pages = new Map<string, { page: Page; context: BrowserContext; faults: string[] }>();
+
+beforeAll(async () => {
+  app = await startApplication();
+  const { page, context, estateId } = await app.signIn('owner');
+  places = placesWithViews(await findIds(page.request, app.url, estateId));
+  await context.close();
+  if (picturesFolder) mkdirSync(picturesFolder, { recursive: true });
+}, 600_000);
+afterAll(() => app?.close());
+
+async function pageFor(role: Place['role'], theme: Theme) {
+  const key = `${role} ${theme}`;
+  const known = pages.get(key);
+  if (known) return known;
+  const { page, context } = role === 'nobody' ? await app.visit() : await app.signIn(role);
+  await page.emulateMedia({ colorScheme: theme, reducedMotion: 'reduce' });
+  const faults: string[] = [];
+  page.on('console', (message) => message.type() === 'error' && faults.push(message.text()));
+  page.on('pageerror', (error) => faults.push(error.message));
+  pages.set(key, { page, context, faults });
+  return pages.get(key)!;
+}
+
+async function settle(page: Page): Promise<void> {
+  await page.waitForLoadState('load');
+  await page.locator('h1, h2').filter({ visible: true }).first().waitFor();
+  await page.waitForFunction(() => document.querySelector('[aria-busy="true"]') === null, undefined, { timeout: 20_000 });
+}
+
+const seriousFaults = async (page: Page) =>
+  (await new AxeBuilder({ page }).analyze()).violations
+    .filter(({ impact }) => impact === 'serious' || impact === 'critical')
+    .map(({ id, nodes }) => `${id}: ${nodes.map(({ html, target }) => `${String(target)} ${html.slice(0, 120)}`).slice(0, 4).join(' | ')}`);
+
+describe.each(themes)('in the %s theme', (theme) => {
+  it.each(Object.keys(views).filter((name) => name !== 'home'))('the screen %s stands at three sizes', async (name) => {
+    const place = places.find((each) => each.name === name)!;
+    const { page, faults } = await pageFor(place.role, theme);
+    faults.length = 0;
+    const found: string[] = [];
+    await page.goto(`${app.url}${place.path}`);
+    for (const size of sizes) {
+      await page.setViewportSize(size);
+      await settle(page);
+      const over = await page.evaluate(() => document.documentElement.scrollWidth - innerWidth);
+      if (over > 0) found.push(`${size.width}: the page is ${over} px wider than the screen`);
+      const key = bareKey.exec(await page.locator('body').innerText());
+      if (key) found.push(`${size.width}: the key ${key[0]} stands for a text`);
+      if (size.width !== 1024) found.push(...(await seriousFaults(page)).map((fault) => `${size.width}: ${fault}`));
+      if (picturesFolder) {
+        await page.waitForTimeout(1200);
+        await page.screenshot({ path: join(picturesFolder, `${name}-${size.width}-${theme}.png`) });
+      }
+    }
+    expect([...found, ...faults.filter((fault) => name !== 'join' || !fault.includes('404'))]).toEqual([]);
+  });
+});
+
+it('keeps every view file reachable from a place', () => {
+  const listed = readFileSync(join(import.meta.dirname, '../../src/router/views.ts'), 'utf8');
+  const folder = join(import.meta.dirname, '../../src/views');
+  const files = readdirSync(folder).flatMap((feature) => readdirSync(join(folder, feature)).filter((file) => file.endsWith('View.vue')).map((file) => `${feature}/${file}`));
+  expect(files.length).toBeGreaterThan(20);
+  expect(files.filter((file) => !listed.includes(file)).filter((file) => file !== 'door/ErrorView.vue')).toEqual([]);
+});

@@ -6,7 +6,7 @@ import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import os from 'node:os';
 import path from 'node:path';
 import { ensureBuilt } from './build.mjs';
-import { inCheckout, npmProgram, root } from './checkout.mjs';
+import { npmProgram, root } from './checkout.mjs';
 import { startTestCluster } from './postgres/testCluster.mjs';
 import { CommandFailed, runCommand } from './process/runCommand.mjs';
 import { runUntilStopped } from './process/runUntilStopped.mjs';

@@ -13,7 +13,8 @@ export async function announceRunner(databaseUrl: string): Promise<() => Promise
   // The server going away ends the mark; the queue's own pool reports it.
   client.on('error', () => undefined);
   await client.connect();
-  const { rows: [{ alone }] } = (await client.query<{ alone: boolean }>('select pg_try_advisory_lock($1) as alone', [presence])) as { rows: [{ alone: boolean }] };
+  const { rows } = await client.query<{ alone: boolean }>('select pg_try_advisory_lock($1) as alone', [presence]);
+  const alone = rows[0]!.alone;
   if (alone) {
     await client.query('select graphile_worker.force_unlock_workers(array(select distinct locked_by from graphile_worker.jobs where locked_by is not null))');
   }

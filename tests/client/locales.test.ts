@@ -79,6 +79,23 @@ describe('texts', () => {
   });
 });
 
+describe('deeds in the history', () => {
+  /** Deeds that the server writes down, as they stand in its code; `zones.${step}` stands for its three steps. */
+  function deeds(folder: string): string[] {
+    return readdirSync(folder).flatMap((name) => {
+      const path = join(folder, name);
+      if (statSync(path).isDirectory()) return deeds(path);
+      return path.endsWith('.ts') ? [...readFileSync(path, 'utf8').matchAll(/\baction: '([a-zA-Z]+\.[a-zA-Z]+)'/g)].map((match) => match[1]!) : [];
+    });
+  }
+
+  it('each have a sentence of their own', () => {
+    const written = [...new Set(deeds(join(root, 'server')))];
+    expect(written.length).toBeGreaterThan(50);
+    expect(written.filter((deed) => !english.has(`people.deed.${deed.replace('.', '_')}`))).toEqual([]);
+  });
+});
+
 interface TemplateNode {
   type: number;
   content?: string | { content: string };

@@ -4,6 +4,7 @@ import { makeGround } from './ground.ts';
 import { seedBlocks } from './seedBlocks.ts';
 import { seedEstate } from './seedEstate.ts';
 import { seedFruit } from './seedFruit.ts';
+import { seedField } from './seedField.ts';
 import { seedLayers } from './seedLayers.ts';
 import { seedLots } from './seedLots.ts';
 import { seedPlans } from './seedPlans.ts';
@@ -36,6 +37,7 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     await seedZones(made, laid, options.now);
     step('plans');
     await seedPlans(made, laid, { days, now: options.now });
+    await seedField(made, { days, now: options.now });
     step('lots');
     await seedLots(made, days);
   } catch (error) {

@@ -13,6 +13,7 @@ import { makeRound } from '../services/rounds/makeRound.ts';
 import type { DemoDays } from './demoDays.ts';
 import type { LaidBlock } from './seedBlocks.ts';
 import type { DemoEstate } from './seedEstate.ts';
+import { uuidFrom } from './uuidFrom.ts';
 
 /** A round that the crew has half walked, another that is planned, and a block that is closed after spraying. */
 export async function seedPlans(made: DemoEstate, laid: readonly LaidBlock[], options: { days: DemoDays; now: Date }): Promise<void> {
@@ -72,10 +73,4 @@ async function walkHalf(crew: Access, round: SentRound, { days, now }: { days: D
     }),
   );
   await recordBatch(crew, { readings, findings: [] }, now);
-}
-
-/** A version 4 identifier from the seeded stream, so that the demo is the same each time. */
-function uuidFrom(random: () => number): string {
-  const hex = Array.from({ length: 32 }, (_, place) => (place === 12 ? 4 : place === 16 ? 8 + Math.floor(random() * 4) : Math.floor(random() * 16)).toString(16)).join('');
-  return [hex.slice(0, 8), hex.slice(8, 12), hex.slice(12, 16), hex.slice(16, 20), hex.slice(20)].join('-');
 }

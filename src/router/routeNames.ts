@@ -37,6 +37,7 @@ export const routePlaces = {
   targets: { path: '/e/:estateId/plans/:planId/targets', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   sheets: { path: '/e/:estateId/rounds/:roundId/sheet', frame: 'office', needs: ['sheets.print', 'own'], under: 'sampling' },
   paper: { path: '/e/:estateId/rounds/:roundId/paper', frame: 'office', needs: ['readings.record', 'do'], under: 'sampling' },
+  photos: { path: '/e/:estateId/photos', frame: 'office', needs: ['readings.record', 'own'], under: 'sampling' },
   conflicts: { path: '/e/:estateId/conflicts', frame: 'office', needs: ['conflicts.settle', 'own'], under: 'sampling' },
   measures: { path: '/e/:estateId/measures', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   restrictions: { path: '/e/:estateId/restrictions', frame: 'office', needs: ['restrictions.see', 'read'], under: 'sampling' },

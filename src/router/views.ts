@@ -41,6 +41,7 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   fieldWalk: () => import('../views/field/FieldWalkView.vue'),
   fieldBag: () => import('../views/field/FieldBagView.vue'),
   fieldConflicts: () => import('../views/field/ConflictsView.vue'),
+  photos: () => import('../views/field/PhotosView.vue'),
   conflicts: () => import('../views/field/ConflictsView.vue'),
   paper: () => import('../views/field/PaperSheetView.vue'),
   fieldOutbox: () => import('../views/field/FieldOutboxView.vue'),

@@ -49,6 +49,21 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id }) => id)).toEqual([]);
   });
 
+  it('a phone that never had the program shows the work after less than 200 KB of script', async () => {
+    const context = await app.browser.newContext({ locale: 'en-GB', viewport: { width: 390, height: 844 }, storageState: await phones[0]!.context.storageState(), serviceWorkers: 'block' });
+    const page = await context.newPage();
+    const scripts: Promise<number>[] = [];
+    page.on('requestfinished', (request) => {
+      if (request.resourceType() === 'script') scripts.push(request.sizes().then(({ responseBodySize }) => responseBodySize));
+    });
+    await page.goto(new URL(phones[0]!.page.url()).href);
+    await page.getByRole('button', { name: 'Start the walk' }).waitFor();
+    const bytes = (await Promise.all(scripts)).reduce((sum, size) => sum + size, 0);
+    expect(scripts.length).toBeGreaterThan(3);
+    expect(bytes).toBeLessThan(200 * 1024);
+    await context.close();
+  });
+
   it('Ana types by taps without signal: a value, an odd one kept by two taps, a missing vine and its reserve, an undo', async () => {
     const [{ page, context }] = phones as [(typeof phones)[number]];
     await startWalk(page);

@@ -5,9 +5,11 @@ import type { NewRound } from '../../../shared/contracts/rounds.ts';
 import { toUtm } from '../../../shared/geo/utm.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
+import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
 import type { SharedRound, WalkShare } from '../../ground/shareRound.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
+import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Membership } from '../../models/Membership.ts';
 import { Person } from '../../models/Person.ts';
@@ -74,13 +76,24 @@ interface Assignment {
 
 async function tell(trx: Transaction, { access, plan, input, people, walk, link }: Assignment): Promise<void> {
   const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const closed = await longestOn(trx, { estateId: access.estateId, blockId: plan.blockId, day: input.onDate });
   const { basis } = plan.result as { basis: PlanBasis };
   for (const [i, person] of people.entries()) {
     if (person.email === null) continue;
     const date = new Intl.DateTimeFormat(person.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${input.onDate}T12:00:00Z`));
     await queueMail(trx, {
       estateId: access.estateId, kind: 'assignment', to: { address: person.email, name: person.name, language: person.language },
-      facts: { estate: estate.name, block: basis.blockName, date, vines: walk.shares[i]!.stops.length, gate: input.gate || '–', link, notes: input.notes },
+      facts: { estate: estate.name, block: basis.blockName, date, vines: walk.shares[i]!.stops.length, gate: input.gate || '–', link, notes: [closed && closedWords(closed, person.language, estate.timeZone), input.notes].filter(Boolean).join('\n\n') },
     });
   }
+}
+
+/** The restriction that ends last of those in force at some time of the day; which rows it concerns stands on sheet and phone. */
+async function longestOn(trx: Transaction, { estateId, blockId, day }: { estateId: string; blockId: string; day: string }): Promise<EntryRestriction | undefined> {
+  return EntryRestriction.query(trx).where({ estateId, blockId }).whereNull('liftedAt').where('startsAt', '<', `${day}T23:59:59Z`).where('endsAt', '>', `${day}T00:00:00Z`).orderBy('endsAt', 'desc').first();
+}
+
+function closedWords({ endsAt, product }: EntryRestriction, language: string, timeZone: string): string {
+  const until = new Intl.DateTimeFormat(language, { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(endsAt);
+  return `${sheetTexts[language as SheetLanguage].restricted} ${until} (${product}).`;
 }

@@ -8,7 +8,7 @@ export type HelpTopic = (typeof helpTopics)[number];
 const topics: Partial<Record<RouteName, HelpTopic>> = {
   today: 'today', estate: 'estate', blockNew: 'block', block: 'block', blockEdit: 'block', layer: 'imports', imports: 'imports', zones: 'zoning', zoningBench: 'zoning', zoning: 'zoning', zoneEditor: 'editor',
   sampling: 'rounds', plan: 'plan', planNew: 'plan', targets: 'rounds', sheets: 'rounds', restrictions: 'restrictions', lab: 'lab', ripeness: 'ripeness', blockRipeness: 'ripeness', lots: 'lots', lot: 'lots', pickBoard: 'notices',
-  review: 'review', people: 'people', mail: 'people', settings: 'people', estateNew: 'people', history: 'history', account: 'account', fieldWork: 'field', fieldWalk: 'field', fieldBag: 'field', fieldOutbox: 'field',
+  review: 'review', people: 'people', mail: 'people', settings: 'people', estateNew: 'people', history: 'history', account: 'account', fieldWork: 'field', fieldWalk: 'field', fieldBag: 'field', fieldOutbox: 'field', fieldConflicts: 'field', conflicts: 'field', paper: 'rounds', measures: 'plan',
 };
 
 export function topicOf(route: unknown): HelpTopic {

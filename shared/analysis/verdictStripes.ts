@@ -8,6 +8,7 @@
 import { fittedSurface, withoutSurface } from './covarianceTrend.ts';
 import type { MaskedPlane } from './covariance.ts';
 import { quantileOfSorted } from './quantile.ts';
+import type { AcrossProfile } from './verdictPlateaus.ts';
 
 const DIRECTIONS = 36;
 /** How many times the median direction's share the best direction must explain to count as stripes. */
@@ -30,7 +31,7 @@ export function stripePattern(plane: MaskedPlane, values: ArrayLike<number>, ste
   const residuals = Float64Array.from(cells, (cell) => rest[cell]!);
   const residualVariance = meanSquare(residuals);
   const shares = Array.from({ length: DIRECTIONS }, (_, direction) => {
-    return meanSquare(profileAcross(plane, { cells, values: residuals, direction, stepCells })) / residualVariance;
+    return meanSquare(levelAcross(plane, { cells, values: residuals, direction, stepCells })) / residualVariance;
   });
   const strongest = Math.max(...shares);
   const median = quantileOfSorted([...shares].sort((a, b) => a - b), 0.5);
@@ -41,10 +42,19 @@ export function stripePattern(plane: MaskedPlane, values: ArrayLike<number>, ste
 export function withoutStripes(plane: MaskedPlane, values: ArrayLike<number>, { pattern, stepCells }: { pattern: StripePattern; stepCells: number }): Float64Array {
   const cells = maskedCells(plane);
   const chosen = Float64Array.from(cells, (cell) => values[cell]!);
-  const profile = profileAcross(plane, { cells, values: chosen, direction: pattern.shares.indexOf(pattern.strongest), stepCells });
+  const levels = levelAcross(plane, { cells, values: chosen, direction: pattern.shares.indexOf(pattern.strongest), stepCells });
   const level = new Float64Array(plane.mask.length);
-  cells.forEach((cell, i) => (level[cell] = chosen[i]! - profile[i]!));
+  cells.forEach((cell, i) => (level[cell] = chosen[i]! - levels[i]!));
   return level;
+}
+
+/** The means of the steps across the strongest direction, in order. */
+export function strongestProfile(plane: MaskedPlane, values: ArrayLike<number>, { pattern, stepCells }: { pattern: StripePattern; stepCells: number }): AcrossProfile {
+  const cells = maskedCells(plane);
+  const chosen = Float64Array.from(cells, (cell) => values[cell]!);
+  const { sums, counts } = stepsAcross(plane, { cells, values: chosen, direction: pattern.shares.indexOf(pattern.strongest), stepCells });
+  const places = Float64Array.from(counts.keys()).filter((step) => counts[step]! > 0);
+  return { places, means: places.map((step) => sums[step]! / counts[step]!), counts: places.map((step) => counts[step]!) };
 }
 
 function maskedCells({ mask }: MaskedPlane): Uint32Array {
@@ -66,8 +76,14 @@ interface ProfileInput {
   readonly stepCells: number;
 }
 
-/** For each cell the mean of its step across the direction; steps are counted from the outermost cell. */
-function profileAcross({ width }: MaskedPlane, { cells, values, direction, stepCells }: ProfileInput): Float64Array {
+/** For each cell the mean of its step across the direction. */
+function levelAcross(plane: MaskedPlane, input: ProfileInput): Float64Array {
+  const { sums, counts, steps } = stepsAcross(plane, input);
+  return Float64Array.from(steps, (step) => sums[step]! / counts[step]!);
+}
+
+/** Sum and number of cells of each step across the direction, and the step of each cell; steps are counted from the outermost cell. */
+function stepsAcross({ width }: MaskedPlane, { cells, values, direction, stepCells }: ProfileInput): { sums: Float64Array; counts: Float64Array; steps: Uint32Array } {
   const angle = (direction * Math.PI) / DIRECTIONS;
   const cosine = Math.cos(angle) / stepCells;
   const sine = Math.sin(angle) / stepCells;
@@ -83,14 +99,12 @@ function profileAcross({ width }: MaskedPlane, { cells, values, direction, stepC
   }
   const sums = new Float64Array(Math.floor(last - first) + 2);
   const counts = new Float64Array(sums.length);
+  const steps = new Uint32Array(cells.length);
   for (let i = 0; i < cells.length; i++) {
     const step = Math.floor(positions[i]! - first);
+    steps[i] = step;
     sums[step] = sums[step]! + values[i]!;
     counts[step] = counts[step]! + 1;
   }
-  for (let i = 0; i < cells.length; i++) {
-    const step = Math.floor(positions[i]! - first);
-    positions[i] = sums[step]! / counts[step]!;
-  }
-  return positions;
+  return { sums, counts, steps };
 }

@@ -5,7 +5,8 @@
 
 import { lagSums, secondLowest, sectorCorrelations } from './covariance.ts';
 import type { EvidenceField } from './verdictField.ts';
-import { stripePattern, withoutStripes } from './verdictStripes.ts';
+import { arePlateaus } from './verdictPlateaus.ts';
+import { stripePattern, strongestProfile, withoutStripes } from './verdictStripes.ts';
 
 /** A patch narrower than this cannot be worked apart; one much wider is zoned whatever it is. */
 const NARROWEST_PATCH_M = 15;
@@ -33,8 +34,10 @@ export function layerStructures(field: EvidenceField, areaM2: number): LayerStru
     const sectors = structureOf(layer);
     const plain = secondLowest(sectors);
     const pattern = stripePattern(field, layer, stepCells);
+    const across = (values: Float64Array) => strongestProfile(field, values, { pattern, stepCells });
+    const isStriped = pattern.isStriped && !arePlateaus(across(layer), field.layers.filter((other) => other !== layer).map(across), stepCells * field.cellSizeM);
     // What is left is measured against the layer's own variance, so that it counts only as far as it matters.
-    const structure = pattern.isStriped ? Math.min(plain, secondLowest(structureOf(withoutStripes(field, layer, { pattern, stepCells })))) : plain;
-    return { structure, byDirection: sectors.correlations, isStriped: pattern.isStriped };
+    const structure = isStriped ? Math.min(plain, secondLowest(structureOf(withoutStripes(field, layer, { pattern, stepCells })))) : plain;
+    return { structure, byDirection: sectors.correlations, isStriped };
   });
 }

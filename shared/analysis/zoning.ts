@@ -23,7 +23,7 @@ import { zoneCountOf } from './zoningStats.ts';
 import type { StageMark, ZoningCandidate, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '1';
+export const ENGINE_VERSION = '2';
 
 export const defaultZoningOptions: ZoningOptions = {
   zones: 'advise',

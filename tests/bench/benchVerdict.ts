@@ -17,14 +17,18 @@ export interface VerdictRow {
   readonly interval: readonly [number, number];
 }
 
-/** `perKind` blocks of each kind and size; zones are wanted "not one". */
+/** What the verdict should say of each kind. */
+const wantedOf = (kind: PanelKind) => (kind === 'zones' || kind === 'straight' ? 'not one' : noiseKinds.some((noise) => noise === kind) ? 'one' : 'test');
+
+/** `perKind` blocks of each kind and size. */
 export function* benchVerdict(perKind: number, firstSeed: number): Generator<VerdictRow> {
   for (const [areaHa, cellSizeM] of [[2, 2], [20, 3]] as const) {
-    for (const kind of [...noiseKinds, ...slopeKinds, 'zones' as const]) {
+    for (const kind of [...noiseKinds, ...slopeKinds, 'zones' as const, 'straight' as const]) {
       const verdicts = judgedPanel({ kind, areaHa, cellSizeM, count: perKind, firstSeed }).map(({ verdict }) => verdict);
       const count = (wanted: string) => verdicts.filter((verdict) => verdict === wanted).length;
-      const right = kind === 'zones' ? perKind - count('one') : count(noiseKinds.some((noise) => noise === kind) ? 'one' : 'test');
-      yield { kind, areaHa, blocks: perKind, one: count('one'), test: count('test'), several: count('several'), wanted: kind === 'zones' ? 'not one' : noiseKinds.some((noise) => noise === kind) ? 'one' : 'test', share: right / perKind, interval: wilson(right, perKind) };
+      const wanted = wantedOf(kind);
+      const right = wanted === 'not one' ? perKind - count('one') : count(wanted);
+      yield { kind, areaHa, blocks: perKind, one: count('one'), test: count('test'), several: count('several'), wanted, share: right / perKind, interval: wilson(right, perKind) };
     }
   }
 }

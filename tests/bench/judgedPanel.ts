@@ -9,7 +9,7 @@ import { defaultZoningOptions } from '../../shared/analysis/zoning.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { noiseBlock, slopeBlock, zonedBlock, type NoiseKind, type SimulatedBlock, type SlopeKind } from './simulatedBlock.ts';
 
-export type PanelKind = NoiseKind | SlopeKind | 'zones';
+export type PanelKind = NoiseKind | SlopeKind | 'zones' | 'straight';
 
 export interface PanelOptions {
   readonly kind: PanelKind;
@@ -47,6 +47,8 @@ export function layersOf({ vigour, conductivity }: SimulatedBlock): ZoningLayer[
 function blockOf({ kind, areaHa, cellSizeM, firstSeed, edgeM = 6 }: PanelOptions, at: number): SimulatedBlock {
   const options = { areaHa, cellSizeM, random: seededRandom(1000 * (firstSeed + at) + kind.length + kind.charCodeAt(0)) };
   if (kind === 'zones') return zonedBlock({ ...options, k: 2 + (at % 4), difficulty: 0.5, edgeM });
+  // Two or three, so that on two hectares a strip is wider than a sensor's swath.
+  if (kind === 'straight') return zonedBlock({ ...options, k: 2 + (at % 2), difficulty: 0.5, edgeM: 1, isStraight: true });
   return kind === 'white' || kind === 'short' || kind === 'stripes' ? noiseBlock(kind, options) : slopeBlock(kind, options);
 }
 

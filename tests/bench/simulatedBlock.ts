@@ -68,13 +68,15 @@ export interface ZonedOptions extends BlockOptions {
   readonly difficulty: number;
   /** Width over which one zone passes into the next. */
   readonly edgeM: number;
+  /** Parallel strips with straight borders instead, as where a vineyard was planted in parts along its rows. */
+  readonly isStraight?: boolean;
 }
 
 /** k zones that follow a smooth field or bodies of soil around seed points, with their own levels in both layers. */
 export function zonedBlock(options: ZonedOptions): SimulatedBlock {
   const { random, k, difficulty, edgeM } = options;
   const grid = simulatedGrid(options);
-  const truth = random() < 0.6 ? bandsOf(grid, options) : bodiesOf(grid, options);
+  const truth = options.isStraight ? stripsOf(grid, options) : random() < 0.6 ? bandsOf(grid, options) : bodiesOf(grid, options);
   const order = shuffledLevels(k, random);
   const level = (levels: number[]) => smoothCells(grid, Float64Array.from(truth, (zone) => levels[Math.max(1, zone) - 1]!), edgeM / 2);
   const steps = Array.from({ length: k }, (_, zone) => (zone - (k - 1) / 2) * (4.5 / k) + 0.15 * randomNormal(random));
@@ -147,6 +149,14 @@ function bandsOf(grid: Grid, { areaHa, k, random }: ZonedOptions): Uint8Array {
   return Uint8Array.from(field, (value, cell) => (grid.inside[cell] === 1 ? 1 + limits.filter((limit) => value > limit).length : 0));
 }
 
+/** Zones as parallel strips of about the same area, turned at random. */
+function stripsOf(grid: Grid, { k, random }: ZonedOptions): Uint8Array {
+  const angle = Math.PI * random();
+  const across = Float64Array.from(grid.inside, (_, cell) => (cell % grid.cols) * Math.cos(angle) + Math.floor(cell / grid.cols) * Math.sin(angle));
+  const sorted = across.filter((_, cell) => grid.inside[cell] === 1).sort();
+  return Uint8Array.from(across, (value, cell) => (grid.inside[cell] === 1 ? Math.min(k, 1 + Math.floor((k * lowerBound(sorted, value)) / sorted.length)) : 0));
+}
+
 /** Zones as the ground nearest to seed points, two points a zone, with wavy borders. */
 function bodiesOf(grid: Grid, { areaHa, k, random }: ZonedOptions): Uint8Array {
   const widthM = Math.sqrt(areaHa * 10_000);
@@ -161,6 +171,16 @@ function bodiesOf(grid: Grid, { areaHa, k, random }: ZonedOptions): Uint8Array {
     const squares = seeds.map((seed) => ((seed % grid.cols) - col) ** 2 + (Math.floor(seed / grid.cols) - row) ** 2);
     return 1 + (squares.indexOf(Math.min(...squares)) % k);
   });
+}
+
+function lowerBound(sorted: Float64Array, value: number): number {
+  let [low, high] = [0, sorted.length];
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (sorted[middle]! < value) low = middle + 1;
+    else high = middle;
+  }
+  return low;
 }
 
 function shuffledLevels(k: number, random: Random): number[] {

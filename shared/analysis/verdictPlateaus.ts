@@ -1,0 +1,63 @@
+/**
+ * A straight border looks like a stripe: along it a layer is alike over any distance. What tells them apart is width. A camera's
+ * or a machine's swaths are narrow and each has a level of its own; plateaus are wide, and a few of them explain the whole
+ * profile across. The best stair with treads of at least 40 m is found by dynamic programming (Fisher 1958, from memory); a
+ * second layer measured by another sensor that steps at the same places speaks for a border too.
+ * In: profiles across the direction of the suspected stripes. Out: whether they are borders. Cost: steps² × treads.
+ */
+
+import { correlation } from './agreement.ts';
+
+/** Profile across a direction: mean and number of cells of each step, in order; steps without cells are left out. */
+export interface AcrossProfile {
+  readonly means: Float64Array;
+  readonly counts: Float64Array;
+  /** Place of each step across, in steps from the outermost. */
+  readonly places: Float64Array;
+}
+
+/** Wider than the swath of a camera flown over vines, and than what a machine passes over at once; our own limit. */
+const NARROWEST_TREAD_M = 40;
+const MOST_TREADS = 6;
+/** Share of the profile's variance that the stair must explain, alone or when another layer steps along. */
+const LEAST_EXPLAINED = 0.95;
+const LEAST_EXPLAINED_TOGETHER = 0.85;
+const LEAST_CORRELATION = 0.8;
+
+/** `others`: the same profile of each other layer. */
+export function arePlateaus(profile: AcrossProfile, others: readonly AcrossProfile[], stepM: number): boolean {
+  const explained = stairShare(profile, NARROWEST_TREAD_M / stepM);
+  if (explained >= LEAST_EXPLAINED) return true;
+  return explained >= LEAST_EXPLAINED_TOGETHER && others.some((other) => Math.abs(correlation(profile.means, other.means)) >= LEAST_CORRELATION);
+}
+
+/**
+ * Share of the profile's variance that the best stair of two to six treads explains, each at least `narrowest` steps wide;
+ * 0 when two do not fit. Means 1 1 1 5 5 5 with equal counts and treads of 3 give 1.
+ */
+export function stairShare({ means, counts, places }: AcrossProfile, narrowest: number): number {
+  const steps = means.length;
+  const [weights, sums, squares] = [new Float64Array(steps + 1), new Float64Array(steps + 1), new Float64Array(steps + 1)];
+  for (let i = 0; i < steps; i++) {
+    weights[i + 1] = weights[i]! + counts[i]!;
+    sums[i + 1] = sums[i]! + counts[i]! * means[i]!;
+    squares[i + 1] = squares[i]! + counts[i]! * means[i]! * means[i]!;
+  }
+  const within = (from: number, to: number) => squares[to]! - squares[from]! - (sums[to]! - sums[from]!) ** 2 / (weights[to]! - weights[from]!);
+  const total = steps > 0 ? within(0, steps) : 0;
+  if (total <= 0) return 0;
+  const isWide = (from: number, to: number) => places[to - 1]! - places[from]! + 1 >= narrowest;
+  let before = Float64Array.from({ length: steps + 1 }, (_, to) => (to > 0 && isWide(0, to) ? within(0, to) : Infinity));
+  let least = total;
+  for (let treads = 2; treads <= MOST_TREADS; treads++) {
+    const now = new Float64Array(steps + 1).fill(Infinity);
+    for (let to = 1; to <= steps; to++) {
+      for (let from = 1; from < to; from++) {
+        if (before[from]! < now[to]! && isWide(from, to)) now[to] = Math.min(now[to]!, before[from]! + within(from, to));
+      }
+    }
+    least = Math.min(least, now[steps]!);
+    before = now;
+  }
+  return Math.min(1, Math.max(0, 1 - least / total));
+}

@@ -1,0 +1,57 @@
+import { describe, expect, it } from 'vitest';
+import { gridOfOutline } from '../../shared/analysis/grid.ts';
+import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
+import { arePlateaus, stairShare, type AcrossProfile } from '../../shared/analysis/verdictPlateaus.ts';
+import { makeZoning } from '../../shared/analysis/zoning.ts';
+import { judgedPanel } from '../bench/judgedPanel.ts';
+
+const profileOf = (means: readonly number[]): AcrossProfile => ({ means: Float64Array.from(means), counts: new Float64Array(means.length).fill(10), places: Float64Array.from(means.keys()) });
+
+describe('a straight border', () => {
+  it('is a stair of few wide treads', () => {
+    expect(stairShare(profileOf([1, 1, 1, 5, 5, 5]), 3)).toBeCloseTo(1, 12);
+    // By hand: means 1 2 8 9 about 5, total 50; the halves leave 0.5 + 0.5.
+    expect(stairShare(profileOf([1, 2, 8, 9]), 2)).toBeCloseTo(1 - 1 / 50, 12);
+    // A ramp of 12 in three treads of four: 1 − 1/9 of the continuous ramp, by hand 15 of 143.
+    expect(stairShare(profileOf([...Array(12).keys()]), 4)).toBeCloseTo(1 - 15 / 143, 12);
+    expect(stairShare(profileOf([1, 5, 1, 5]), 3)).toBe(0);
+  });
+
+  it('is told from swaths of 24 m that have levels of their own', () => {
+    const swaths = [0.3, -1.1, 0.9, -0.2, 1.4, -0.8].flatMap((level) => Array<number>(8).fill(level));
+    const border = Array.from({ length: 48 }, (_, step) => Number(step >= 20));
+    expect(arePlateaus(profileOf(swaths), [], 3)).toBe(false);
+    expect(arePlateaus(profileOf(border), [], 3)).toBe(true);
+  });
+
+  it('that is blurred needs a second layer that steps at the same place', () => {
+    const random = seededRandom(5);
+    const blurred = Array.from({ length: 48 }, (_, step) => Number(step >= 20) + 0.16 * randomNormal(random));
+    const share = stairShare(profileOf(blurred), 40 / 3);
+    expect(share).toBeGreaterThan(0.85);
+    expect(share).toBeLessThan(0.95);
+    const other = Array.from({ length: 48 }, (_, step) => 3 - Number(step >= 20) + 0.1 * randomNormal(random));
+    const unlike = Array.from({ length: 48 }, () => randomNormal(random));
+    expect(arePlateaus(profileOf(blurred), [], 3)).toBe(false);
+    expect(arePlateaus(profileOf(blurred), [profileOf(unlike)], 3)).toBe(false);
+    expect(arePlateaus(profileOf(blurred), [profileOf(other)], 3)).toBe(true);
+  });
+});
+
+describe('two perfect plateaus with a straight border along the rows', () => {
+  const grid = gridOfOutline([[[[0, 0], [150, 0], [150, 140], [0, 140], [0, 0]]]], 32631, 3);
+  const step = (noise: number, seed: number) => {
+    const random = seededRandom(seed);
+    return Float32Array.from(grid.inside, (inside, cell) => (inside === 1 ? (cell % grid.cols < 22 ? 0.5 : 0.7) + noise * randomNormal(random) : NaN));
+  };
+  const layer = (id: string, cells: Float32Array) => ({ id, type: 'vigour', role: 'evidence' as const, kind: 'number' as const, cells, weight: null });
+
+  it.each([0.001, 0.02])('are worth zoning, from one layer or two, with noise of %d', (noise) => {
+    expect(makeZoning({ grid, layers: [layer('a', step(noise, 1))] })).toMatchObject({ advisedK: 2, verdict: { verdict: 'several' } });
+    expect(makeZoning({ grid, layers: [layer('a', step(noise, 1)), layer('b', step(noise, 2).map((value) => 80 * value))] })).toMatchObject({ advisedK: 2, verdict: { verdict: 'several' } });
+  });
+
+  it('are never called one on simulated blocks of 20 ha', () => {
+    expect(judgedPanel({ kind: 'straight', areaHa: 20, cellSizeM: 6, count: 4, firstSeed: 5000 }).filter(({ verdict }) => verdict === 'one')).toEqual([]);
+  });
+});

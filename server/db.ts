@@ -10,6 +10,7 @@ import * as m006 from '../migrations/006_lab.ts';
 import * as m007 from '../migrations/007_labels.ts';
 import * as m009 from '../migrations/009_field.ts';
 import * as m012 from '../migrations/012_invited_roles_and_backups.ts';
+import * as m010 from '../migrations/010_zoning_editors.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -22,6 +23,7 @@ const migrations: Record<string, Knex.Migration> = {
   '007_labels': m007,
   '009_field': m009,
   '012_invited_roles_and_backups': m012,
+  '010_zoning_editors': m010,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

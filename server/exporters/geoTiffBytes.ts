@@ -15,6 +15,8 @@ export interface GeoTiffInput {
   noData?: number;
   /** Free text in the description tag. */
   description?: string;
+  /** Name and unit of each band, in the metadata tag that GDAL reads. */
+  bandNames?: readonly { name: string; unit: string }[];
 }
 
 const rowsPerStrip = 64;
@@ -51,7 +53,8 @@ export function geoTiffBytes(input: GeoTiffInput): Buffer {
     double(33550, [input.pixelSize, input.pixelSize, 0]),
     double(33922, [0, 0, 0, input.originX, input.originY, 0]),
     short(34735, geoKeys),
-    ...(input.noData === undefined ? [] : [ascii(42113, String(input.noData))]),
+    ...(input.bandNames === undefined ? [] : [ascii(42112, bandMetadata(input.bandNames))]),
+    ...(input.noData === undefined ? [] : [ascii(42113, Number.isNaN(input.noData) ? 'nan' : String(input.noData))]),
   ];
   const directory = directoryBytes(tags, offset);
   const header = Buffer.alloc(headerBytes);
@@ -59,6 +62,14 @@ export function geoTiffBytes(input: GeoTiffInput): Buffer {
   header.writeUInt16LE(42, 2);
   header.writeUInt32LE(offset, 4);
   return Buffer.concat([header, ...strips.flatMap((strip) => (strip.length % 2 === 1 ? [strip, Buffer.alloc(1)] : [strip])), directory]);
+}
+
+const inXml: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;' };
+const escaped = (text: string) => text.replace(/[&<>"]/g, (sign) => inXml[sign]!);
+
+function bandMetadata(bands: readonly { name: string; unit: string }[]): string {
+  const items = bands.flatMap(({ name, unit }, band) => [`<Item name="DESCRIPTION" sample="${band}" role="description">${escaped(name)}</Item>`, ...(unit === '' ? [] : [`<Item name="UNITTYPE" sample="${band}" role="unittype">${escaped(unit)}</Item>`])]);
+  return `<GDALMetadata>${items.join('')}</GDALMetadata>`;
 }
 
 function stripsOf({ width, height, bands }: GeoTiffInput): Buffer[] {

@@ -13,6 +13,8 @@ export interface ZoneExport {
   /** Runs of vines along the rows, in the block's own numbers. */
   runs: readonly ExportedRun[];
   cells: { labels: Uint8Array; cols: number; rows: number; cellSizeM: number; epsg: number; x0: number; y0: number };
+  /** The layers on the same cells; empty unless the format asks for them. */
+  layers: readonly { name: string; unit: string; cells: Float32Array }[];
 }
 
 export interface ExportedZone {

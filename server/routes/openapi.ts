@@ -18,7 +18,7 @@ import { openSession, passwordChange, resetAnswer, resetRequest } from '../../sh
 import { searchAnswer } from '../../shared/contracts/search.ts';
 import { todayView } from '../../shared/contracts/today.ts';
 import { credentials, personChange, session } from '../../shared/contracts/session.ts';
-import { exportFormatLine, newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningLine, zoningView } from '../../shared/contracts/zonings.ts';
+import { exportFormatLine, newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningDoubt, zoningLine, zoningPresence, zoningSeasons, zoningView } from '../../shared/contracts/zonings.ts';
 
 interface Operation {
   method: 'get' | 'post' | 'put' | 'patch' | 'delete';
@@ -85,6 +85,9 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/redo', summary: 'Bring the last change taken back again', body: revisionOnly, answer: zoningView },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/effects', summary: 'What publishing a draft would touch', answer: publishEffects },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/compare', summary: 'Two zonings of a block vine by vine (?with=)', answer: zoningComparison },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/doubt', summary: 'Vines that fit another zone nearly as well, counted and drawn (?zones=)', answer: zoningDoubt },
+  { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/seasons', summary: 'Agreement with the zones and layers of other seasons', answer: zoningSeasons },
+  { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/presence', summary: 'Says that one has the zones open to edit; answers who else has', answer: zoningPresence },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/publish', summary: 'Put a draft in force; the zones in force are retired', body: publishRequest, answer: zoningView },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/restore', summary: 'Take zones up again as a new draft', answer: z.object({ id: z.uuid() }) },
   { method: 'get', path: '/api/estates/{estateId}/zonings/{zoningId}/export', summary: 'Zones as a file (?format= one of /api/formats, ?zones=)' },

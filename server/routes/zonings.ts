@@ -3,13 +3,16 @@ import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
 import { newZoning, publishRequest, revisionOnly, zoneEditRequest, zoningChange } from '../../shared/contracts/zonings.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import { readDoubt } from '../services/zonings/doubt.ts';
 import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '../services/zonings/editZones.ts';
 import { exportZones } from '../services/zonings/exportZones.ts';
 import { liveZones } from '../services/zonings/liveZones.ts';
 import { nameZoning } from '../services/zonings/nameZoning.ts';
+import { keepPresence } from '../services/zonings/presence.ts';
 import { compareZonings, publishEffects, publishZones } from '../services/zonings/publish.ts';
 import { reportZoning } from '../services/zonings/reportZoning.ts';
 import { requestZoning } from '../services/zonings/request.ts';
+import { compareSeasons } from '../services/zonings/seasons.ts';
 import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
 
 const shownQuery = z.object({ zones: z.coerce.number().int().min(1).max(6).optional() });
@@ -43,6 +46,15 @@ export function zoningRoutes(): Router {
   router.get('/zonings/:zoningId/labels', allow('estate.see', 'read'), async (request, response) => {
     const { labels, gridKey } = await readLabels(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null);
     response.set('x-grid-key', gridKey).type('application/octet-stream').send(Buffer.from(labels));
+  });
+  router.get('/zonings/:zoningId/doubt', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await readDoubt(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null));
+  });
+  router.get('/zonings/:zoningId/seasons', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await compareSeasons(accessOf(request), idParam(request, 'zoningId')));
+  });
+  router.post('/zonings/:zoningId/presence', allow('zones.edit', 'propose'), async (request, response) => {
+    response.json(await keepPresence(accessOf(request), idParam(request, 'zoningId'), new Date()));
   });
   router.patch('/zonings/:zoningId', allow('zones.edit', 'propose'), async (request, response) => {
     const { name, chosenZones } = zoningChange.parse(request.body);

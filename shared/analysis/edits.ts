@@ -10,7 +10,7 @@ import { labelsFromRuns } from './editsRuns.ts';
 import { splitCells } from './editsSplit.ts';
 import { assertCellCount, type Grid, type Labels } from './grid.ts';
 import { cellsPerLabel, relabelled } from './labels.ts';
-import { cellsForArea, sieveByBorder } from './sieve.ts';
+import { withoutSmall } from './zoningClean.ts';
 
 export interface ZoneInfo {
   readonly number: number;
@@ -36,7 +36,7 @@ export type ZoneEdit =
   | { readonly kind: 'recolour'; readonly zone: number; readonly colour: string | null }
   /** Labels made elsewhere, such as zones snapped to rows, as runs (see editsRuns). `reason` says what made them. */
   | { readonly kind: 'replace'; readonly runs: readonly number[]; readonly reason: 'snapped' | 'restored' }
-  | { readonly kind: 'clean'; readonly minPatchHa: number };
+  | { readonly kind: 'clean'; readonly minPatchHa: number; readonly narrowestM?: number };
 
 export const MAX_ZONE_NUMBER = 60;
 
@@ -132,8 +132,8 @@ function replaced(grid: Grid, map: ZoneMap, { runs }: EditOf<'replace'>): ZoneMa
   return withLabels(map, labels);
 }
 
-function cleaned(grid: Grid, map: ZoneMap, { minPatchHa }: EditOf<'clean'>): ZoneMap {
-  return withLabels(map, sieveByBorder(map.labels, grid.cols, { minCells: cellsForArea(minPatchHa, grid.cellSizeM) }));
+function cleaned(grid: Grid, map: ZoneMap, { minPatchHa, narrowestM = 0 }: EditOf<'clean'>): ZoneMap {
+  return withLabels(map, withoutSmall(grid, map.labels, { smallestPatchHa: minPatchHa, narrowestM }));
 }
 
 /** Zones whose last cell is gone leave; numbers that are new come without name and colour. */

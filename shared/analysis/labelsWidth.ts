@@ -10,7 +10,20 @@ import type { Labels } from './grid.ts';
  * NaN for a label not in use. The block's edge does not narrow a zone: only other zones do. Discs stand on cell centres,
  * so widths are judged to one cell, in the zone's favour: a strip of two cells is wide enough for two cells.
  */
-export function wideShare(labels: Labels, cols: number, { widthM, cellSizeM }: { widthM: number; cellSizeM: number }): Float64Array {
+export function wideShare(labels: Labels, cols: number, width: Width): Float64Array {
+  const isReached = wideCells(labels, cols, width);
+  const counts = cellsPerLabel(labels);
+  const reached = cellsPerLabel(labels.map((label, cell) => (isReached[cell] === 1 ? label : 0)));
+  return Float64Array.from(counts, (count, label) => (label === 0 || count === 0 ? NaN : (reached[label] ?? 0) / count));
+}
+
+export interface Width {
+  readonly widthM: number;
+  readonly cellSizeM: number;
+}
+
+/** 1 where a disc of the width that fits into the cell's zone reaches the cell. */
+export function wideCells(labels: Labels, cols: number, { widthM, cellSizeM }: Width): Uint8Array {
   const radius = widthM / 2 / cellSizeM;
   const isCore = new Uint8Array(labels.length).fill(1);
   const tooNear = discOffsets(radius - 1e-9);
@@ -23,9 +36,7 @@ export function wideShare(labels: Labels, cols: number, { widthM, cellSizeM }: {
   eachRim(core, cols, (cell, own) => stamp(disc, cell, { labels, cols }, (near) => {
     if (labels[near] === own) isReached[near] = 1;
   }));
-  const counts = cellsPerLabel(labels);
-  const reached = cellsPerLabel(labels.map((label, cell) => (isReached[cell] === 1 ? label : 0)));
-  return Float64Array.from(counts, (count, label) => (label === 0 || count === 0 ? NaN : (reached[label] ?? 0) / count));
+  return isReached;
 }
 
 /** Calls `visit` for each cell with a label that has a cell of another value, 0 included, among its eight neighbours. */

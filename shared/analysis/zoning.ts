@@ -30,6 +30,7 @@ export const defaultZoningOptions: ZoningOptions = {
   standardise: 'plain',
   smoothingM: 3,
   smallestPatchHa: 0.05,
+  narrowestM: 0,
   principalComponents: false,
   seed: 1,
   drawAll: false,
@@ -55,7 +56,7 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
   mark('clusters', 0.7);
   const quality = rateFits(table, fits, options.seed);
   mark('quality', 0.8);
-  const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, orderBy: layers[0]!.cells }));
+  const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, narrowestM: options.narrowestM, orderBy: layers[0]!.cells }));
   mark('clean-up', 0.85);
   const count = adviseZoneCount({ ...evidence, workable: workableNumbers(cleaned) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
@@ -93,6 +94,7 @@ function checkedOptions({ grid, layers, options = {}, readings = [] }: ZoningInp
   }
   if (!(all.smoothingM >= 0 && all.smoothingM <= 50)) throw new AnalysisError('smoothing', `A smoothing of ${all.smoothingM} m cannot be used; give 0 to 50 m.`);
   if (!(all.smallestPatchHa >= 0)) throw new AnalysisError('smallest-patch', `A smallest patch of ${all.smallestPatchHa} ha cannot be used; give 0 or more.`);
+  if (!(all.narrowestM >= 0 && all.narrowestM <= 200)) throw new AnalysisError('narrowest', `A narrowest part of ${all.narrowestM} m cannot be used; give 0 to 200 m.`);
   if (!Number.isInteger(all.seed)) throw new AnalysisError('seed', `The seed ${all.seed} cannot be used; give a whole number.`);
   if (layers.length === 0) throw new AnalysisError('no-layer', 'No layer was chosen; choose at least one.');
   const ids = new Set<string>();

@@ -5,6 +5,7 @@
 
 import type { Cells, Grid, Labels } from './grid.ts';
 import { majorityFiltered, renumberedByMean } from './labels.ts';
+import { withoutNarrow } from './labelsNarrow.ts';
 import { cellsForArea, sieveByBorder } from './sieve.ts';
 import type { CellZones } from './zoningFit.ts';
 
@@ -12,18 +13,26 @@ const MAJORITY_PASSES = 2;
 
 export interface CleanOptions {
   readonly smallestPatchHa: number;
+  /** Parts of a zone narrower than this join a neighbour; 0 leaves them. */
+  readonly narrowestM: number;
   /** Zone 1 has the lowest mean of this layer. */
   readonly orderBy: Cells;
 }
 
 /** Cells that clean-up moved to another zone count as wholly doubtful. */
-export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, orderBy }: CleanOptions): CellZones {
+export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrowestM, orderBy }: CleanOptions): CellZones {
   if (raw.labels.every((label) => label <= 1)) return raw;
   let cleaned: Labels = raw.labels;
   for (let pass = 0; pass < MAJORITY_PASSES; pass++) cleaned = majorityFiltered(cleaned, grid.cols);
-  cleaned = sieveByBorder(cleaned, grid.cols, { minCells: cellsForArea(smallestPatchHa, grid.cellSizeM) });
+  cleaned = withoutSmall(grid, cleaned, { smallestPatchHa, narrowestM });
   const doubt = raw.doubt.map((value, cell) => (cleaned[cell] === raw.labels[cell] ? value : 1));
   return { labels: renumberedByMean(cleaned, orderBy), doubt };
+}
+
+/** Nothing narrower and nothing smaller than asked for; what is cut off a narrow place may be small. */
+export function withoutSmall({ cols, cellSizeM }: Grid, labels: Labels, { smallestPatchHa, narrowestM }: Omit<CleanOptions, 'orderBy'>): Labels {
+  const wide = narrowestM > cellSizeM ? withoutNarrow(labels, cols, { widthM: narrowestM, cellSizeM }) : labels;
+  return sieveByBorder(wide, cols, { minCells: cellsForArea(smallestPatchHa, cellSizeM) });
 }
 
 /** Patches of each zone, by zone number: cells that share an edge are one patch. Rows are joined run by run. */

@@ -28,6 +28,8 @@ export interface ZoningOptions {
   readonly smoothingM: number;
   /** Patches smaller than this join a neighbour. */
   readonly smallestPatchHa: number;
+  /** Parts of a zone narrower than this join a neighbour, metres. 0 leaves them. */
+  readonly narrowestM: number;
   /** Replace the weighted layers by their principal components. */
   readonly principalComponents: boolean;
   readonly seed: number;

@@ -11,6 +11,7 @@ export const zoningOptions = z.object({
   standardise: z.enum(['plain', 'robust']).default('plain'),
   smoothingM: z.number().min(0).max(50).default(3),
   smallestPatchHa: z.number().min(0).max(5).default(0.05),
+  narrowestRows: z.number().min(0).max(20).default(0),
   principalComponents: z.boolean().default(false),
 });
 export type ZoningRequestOptions = z.infer<typeof zoningOptions>;
@@ -87,6 +88,8 @@ export const zoningView = z.object({
   evidence: z.array(evidenceRow),
   differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),
   warnings: z.array(reason),
+  /** The zones tested on readings of fruit: analysis of variance by zone and a shuffle within rows. */
+  fruit: z.array(z.object({ measure: z.string(), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),
@@ -109,7 +112,7 @@ export const zoneOperation = z.discriminatedUnion('kind', [
   z.object({ kind: z.literal('renumber'), numbers: z.array(z.object({ from: zoneNumber, to: zoneNumber })).min(1) }),
   z.object({ kind: z.literal('recolour'), zone: zoneNumber, colour: z.string().regex(/^#[0-9a-fA-F]{6}$/).nullable() }),
   z.object({ kind: z.literal('snap'), mode: z.enum(['wholeRow', 'partRow']), shortestRunM: z.number().min(1).max(500).default(20) }),
-  z.object({ kind: z.literal('clean'), smallestPatchHa: z.number().min(0).max(5) }),
+  z.object({ kind: z.literal('clean'), smallestPatchHa: z.number().min(0).max(5), narrowestRows: z.number().min(0).max(20).default(0) }),
 ]);
 export type ZoneOperation = z.infer<typeof zoneOperation>;
 
@@ -134,8 +137,26 @@ export const publishEffects = z.object({
 });
 export type PublishEffects = z.infer<typeof publishEffects>;
 
-export const zoningComparison = z.object({ vines: z.number().int(), vinesMoved: z.number().int(), adjustedRand: z.number(), pairs: z.array(z.object({ from: z.number().int(), to: z.number().int(), vines: z.number().int() })) });
+/** `vinesMoved` by zone number; `vinesApart` when each zone is paired with the one it shares most vines with, whatever the numbers. */
+export const zoningComparison = z.object({ vines: z.number().int(), vinesMoved: z.number().int(), vinesApart: z.number().int(), adjustedRand: z.number(), pairs: z.array(z.object({ from: z.number().int(), to: z.number().int(), vines: z.number().int() })) });
 export type ZoningComparison = z.infer<typeof zoningComparison>;
+
+const vineRun = z.object({ rowId: id, from: z.number().int(), to: z.number().int() });
+
+/** Vines whose layers fit another zone nearly as well as their own, and the ground they stand on. */
+export const zoningDoubt = z.object({ vines: z.number().int(), doubtful: z.number().int(), byZone: z.array(z.object({ zone: zoneNumber, vines: z.number().int() })), runs: z.array(vineRun), geometry: multiPolygonGeometry.nullable() });
+export type ZoningDoubt = z.infer<typeof zoningDoubt>;
+
+/** How far zones and layers of other seasons agree: adjusted Rand index of zones by vine; of layers the rank correlation and the share of cells that stay in the same third. */
+export const zoningSeasons = z.object({
+  zones: z.array(z.object({ zoningId: id, number: z.number().int(), season: z.string(), zones: z.number().int(), adjustedRand: z.number(), vinesApart: z.number().int(), vines: z.number().int() })),
+  layers: z.array(z.object({ layerId: id, name: z.string(), measuredOn: z.string(), otherId: id, otherName: z.string(), otherMeasuredOn: z.string(), rankCorrelation: z.number(), sameThird: z.number(), cells: z.number().int() })),
+});
+export type ZoningSeasons = z.infer<typeof zoningSeasons>;
+
+/** Who else has these zones open to edit, the revision that is kept now and who made it. */
+export const zoningPresence = z.object({ revision: z.number().int(), changedBy: z.string().nullable(), others: z.array(z.object({ name: z.string(), seenAt: z.string() })) });
+export type ZoningPresence = z.infer<typeof zoningPresence>;
 
 export const exportFormatLine = z.object({ id: z.string(), mediaType: z.string(), extension: z.string() });
 export type ExportFormatLine = z.infer<typeof exportFormatLine>;

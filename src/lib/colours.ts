@@ -41,13 +41,18 @@ export interface ZoneStyleOptions {
   readonly set?: ColourSet;
   /** How many zones the block has; the ordered set needs it. */
   readonly count: number;
+  /** Colours that people gave zones, by zone number. */
+  readonly own?: Readonly<Record<number, string>>;
 }
 
+/** Colours offered for zones of one's own choice. */
+export const ownColours: readonly string[] = unordered;
+
 /** Fill, pattern and mark colour of a zone. `zone` counts from 1; past 6 the six styles repeat. */
-export function zoneStyle(zone: number, { set = 'ordered', count }: ZoneStyleOptions): ZoneStyle {
+export function zoneStyle(zone: number, { set = 'ordered', count, own = {} }: ZoneStyleOptions): ZoneStyle {
   const place = (zone - 1) % 6;
   const palette = set === 'unordered' ? unordered : ordered[Math.min(6, Math.max(1, count))]!;
-  const fill = palette[place % palette.length]!;
+  const fill = own[zone] ?? palette[place % palette.length]!;
   return { fill, pattern: patterns[place]!, mark: markOn(fill) };
 }
 

@@ -7,7 +7,9 @@ import type { FeatureCollection, MultiPolygon, Position } from 'geojson';
 import { fromArrayBuffer } from 'geotiff';
 import Papa from 'papaparse';
 import * as shapefiles from 'shpjs';
+import initSqlJs from 'sql.js';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
 import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
@@ -116,7 +118,7 @@ function expectZones(read: FeatureCollection<MultiPolygon>, nameOf: (properties:
 describe('formats of zones', () => {
   it('are listed for menus', async () => {
     const { body } = await manager.get('/api/formats');
-    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'kml', 'rows', 'geotiff']);
+    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'geotiff', 'layers']);
     expect((await (await app.browser()).get('/api/formats')).status).toBe(401);
   });
 
@@ -186,6 +188,49 @@ describe('the shapefile', () => {
     writeFileSync(file, await bytesOf('shapefile'));
     expectZones(readWithGdal(`/vsizip/${file}/zones.shp`), (properties) => properties.NAME);
     expect(execFileSync('ogrinfo', ['-so', '-al', `/vsizip/${file}/zones.shp`], { encoding: 'utf8' })).toMatch(/WGS[ _](19)?84/);
+  });
+});
+
+describe('the GeoPackage', () => {
+  it('says what it is in its header and keeps the rows beside the zones', async () => {
+    const bytes = await bytesOf('geopackage');
+    expect(bytes.toString('latin1', 0, 15)).toBe('SQLite format 3');
+    expect([bytes.toString('latin1', 68, 72), bytes.readUInt32BE(60)]).toEqual(['GPKG', 10300]);
+    const { Database } = await initSqlJs();
+    const db = new Database(bytes);
+    expect(db.exec('select sum(to_vine - from_vine + 1) from rows')[0]!.values[0]![0]).toBe(seen.zones.reduce((sum, zone) => sum + zone.vines, 0));
+    expect(db.exec('pragma foreign_key_check')).toEqual([]);
+    db.close();
+  });
+
+  it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
+    const file = join(folder, 'zones.gpkg');
+    writeFileSync(file, await bytesOf('geopackage'));
+    const out = execFileSync('ogr2ogr', ['-f', 'GeoJSON', '-lco', 'COORDINATE_PRECISION=10', '/vsistdout/', file, 'zones'], { encoding: 'utf8', maxBuffer: 1e8 });
+    expectZones(JSON.parse(out) as FeatureCollection<MultiPolygon>, (properties) => properties.name);
+    expect(execFileSync('ogrinfo', ['-so', '-al', file], { encoding: 'utf8' })).toMatch(/WGS 84[\s\S]*Multi Polygon|Multi Polygon[\s\S]*WGS 84/);
+  });
+});
+
+describe('layers as a raster', () => {
+  it('hold the cells as they were, with position, no-data, name and unit', async () => {
+    const bytes = await bytesOf('layers');
+    const image = await (await fromArrayBuffer(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length) as ArrayBuffer)).getImage();
+    const { x0, y0, cellSizeM, inside } = gridOf(plot.ground);
+    expect([image.getOrigin().slice(0, 2), image.getResolution()[0]]).toEqual([[x0, y0], cellSizeM]);
+    const [read] = (await image.readRasters()) as unknown as Float32Array[];
+    const { cells } = await BlockLayer.query().findOne({ layerId: plot.layerId, blockId: plot.blockId }).throwIfNotFound();
+    const stored = decodeFloatCells(cells);
+    expect(read!.length).toBe(stored.length);
+    read!.forEach((value, cell) => expect(Object.is(value, stored[cell]) || inside[cell] === 0).toBe(true));
+  });
+
+  it.skipIf(!hasTool('gdalinfo'))('are read by GDAL with reference, no-data and name', async () => {
+    const file = join(folder, 'layers.tif');
+    writeFileSync(file, await bytesOf('layers'));
+    const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { bands: { description: string; noDataValue: unknown; type: string }[]; stac?: { 'proj:epsg'?: number }; coordinateSystem: { wkt: string } };
+    expect(info.bands).toMatchObject([{ description: 'Flight of June', noDataValue: 'NaN', type: 'Float32' }]);
+    expect(info.coordinateSystem.wkt).toContain(String(place.epsg));
   });
 });
 

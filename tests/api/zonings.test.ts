@@ -1,13 +1,16 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
-import { newZoning, type ZoneOperation, type ZoningView } from '../../shared/contracts/zonings.ts';
+import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Job } from '../../server/models/Job.ts';
+import { Layer } from '../../server/models/Layer.ts';
 import { Reading } from '../../server/models/Reading.ts';
+import { Season } from '../../server/models/Season.ts';
 import { Zoning } from '../../server/models/Zoning.ts';
 import { ZoningCandidate } from '../../server/models/ZoningCandidate.ts';
+import { ZoningEditor } from '../../server/models/ZoningEditor.ts';
 import { zonesOfVines } from '../../server/ground/blockVines.ts';
 import { JobCancelled, startRunner } from '../../server/jobs/runner.ts';
 import { editZones, keepAsDraft } from '../../server/services/zonings/editZones.ts';
@@ -312,7 +315,7 @@ describe('a draft', () => {
     const spotted = await edit(zoningId, { kind: 'giveArea', toZone: 2, area: shape });
     expect(spotted.zones[1]!.areaM2).toBeGreaterThan(60);
     expect(spotted.zones[1]!.areaM2).toBeLessThan(140);
-    expect((await edit(zoningId, { kind: 'clean', smallestPatchHa: 0.05 })).zones.map((zone) => zone.number)).toEqual([1]);
+    expect((await edit(zoningId, { kind: 'clean', smallestPatchHa: 0.05, narrowestRows: 0 })).zones.map((zone) => zone.number)).toEqual([1]);
     await expectWhole(zoningId);
   });
 
@@ -398,7 +401,7 @@ function randomOperation(random: () => number): ZoneOperation {
     { kind: 'giveArea', toZone: zone(), area: { type: 'Polygon', coordinates: [[a, b, c, a]] } },
     { kind: 'renumber', numbers: [{ from: zone(), to: 7 }] },
     { kind: 'snap', mode: random() < 0.5 ? 'wholeRow' : 'partRow', shortestRunM: 15 },
-    { kind: 'clean', smallestPatchHa: 0.03 },
+    { kind: 'clean', smallestPatchHa: 0.03, narrowestRows: 3 },
   ];
   return choices[randomIndex(random, choices.length)]!;
 }
@@ -461,7 +464,48 @@ describe('publishing', () => {
     expect((await manager.get(`${base()}/zonings/${proposal}/compare?with=${first}`)).body.vines).toBe(plot.ground.vines.count);
     await edit(one, { kind: 'renumber', numbers: [{ from: 1, to: 2 }, { from: 2, to: 1 }] });
     const swapped = (await manager.get(`${base()}/zonings/${one}/compare?with=${first}`)).body as { vines: number; vinesMoved: number; adjustedRand: number; pairs: object[] };
-    expect(swapped).toMatchObject({ vinesMoved: swapped.vines, adjustedRand: 1 });
+    expect(swapped).toMatchObject({ vinesMoved: swapped.vines, vinesApart: 0, adjustedRand: 1 });
     expect(swapped.pairs).toHaveLength(2);
+  });
+
+  it('counts the vines in doubt and draws where they stand', async () => {
+    const zoningId = await zoned();
+    const doubt = (await manager.get(`${base()}/zonings/${zoningId}/doubt?zones=4`)).body as ZoningDoubt;
+    expect(doubt.vines).toBe(plot.ground.vines.count);
+    expect(doubt.doubtful).toBeGreaterThan(0);
+    expect(doubt.byZone.reduce((sum, zone) => sum + zone.vines, 0)).toBe(doubt.doubtful);
+    expect(doubt.runs.reduce((sum, run) => sum + run.to - run.from + 1, 0)).toBe(doubt.doubtful);
+    // Vines stand evenly, so their share is about the share of cells that the zones tell.
+    const { zones } = await view(zoningId, 4);
+    const cells = zones.reduce((sum, zone) => sum + zone.doubtfulShare! * zone.areaM2, 0) / zones.reduce((sum, zone) => sum + zone.areaM2, 0);
+    expect(Math.abs(doubt.doubtful / doubt.vines - cells)).toBeLessThan(0.05);
+    expect((await manager.get(`${base()}/zonings/${zoningId}/doubt?zones=1`)).body).toMatchObject({ doubtful: 0, geometry: null });
+  });
+
+  it('is set beside the layers and zones of other seasons', async () => {
+    const { placed, layer } = { placed: await BlockLayer.query().findOne({ layerId: plot.layerId, blockId: plot.blockId }).throwIfNotFound(), layer: await Layer.query().findById(plot.layerId).throwIfNotFound() };
+    const { id: _id, createdAt: _made, ...facts } = placed;
+    const older = await Layer.query().insert({ estateId: estate.estateId, type: 'vigour', name: 'Flight of last year', unit: '', measuredOn: '2025-06-20', createdBy: layer.createdBy });
+    await BlockLayer.query().insert({ ...facts, layerId: older.id });
+    const zoningId = await draft(2);
+    const season = await Season.query().insert({ estateId: estate.estateId, name: '2025', startsOn: '2024-11-01', endsOn: '2025-10-31', phases: {} });
+    const { id: _copy, ...kept } = await Zoning.query().findById(zoningId).throwIfNotFound();
+    await Zoning.query().insert({ ...kept, seasonId: season.id, number: 900, state: 'retired', publishedAt: new Date('2025-07-01') });
+    const seasons = (await manager.get(`${base()}/zonings/${zoningId}/seasons`)).body as ZoningSeasons;
+    expect(seasons.layers).toMatchObject([{ layerId: plot.layerId, otherId: older.id, rankCorrelation: 1, sameThird: 1 }]);
+    expect(seasons.zones).toMatchObject([{ season: '2025', number: 900, zones: 2, adjustedRand: 1, vinesApart: 0 }]);
+    await Zoning.query().where({ seasonId: season.id }).delete();
+  });
+
+  it('tells the second of two editors who else has the zones open and who changed them', async () => {
+    const zoningId = await draft(2);
+    const open = async (agent: Agent) => (await agent.post(`${base()}/zonings/${zoningId}/presence`)).body as ZoningPresence;
+    expect(await open(manager)).toMatchObject({ others: [] });
+    expect((await open(agronomist)).others.map(({ name }) => name)).toEqual([managerName]);
+    const before = (await open(manager)).revision;
+    await edit(zoningId, { kind: 'rename', zone: 1, name: 'Seen' });
+    expect(await open(agronomist)).toMatchObject({ revision: before + 1, changedBy: managerName });
+    await ZoningEditor.query().where({ zoningId }).patch({ seenAt: new Date(Date.now() - 120_000) });
+    expect((await open(agronomist)).others).toEqual([]);
   });
 });

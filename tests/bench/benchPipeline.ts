@@ -1,9 +1,11 @@
 /**
  * Seconds and memory of the whole zoning program, cold start included, on generated files or on a folder of given ones; beside
- * it, when a command is given, the same files through another program, runs interleaved, as ratios of medians.
+ * it, when commands are given, the same files through other programs, runs interleaved, as ratios of medians. Memory of all is
+ * the highest resident set that the system notes of their process. Zones are checked for gaps and overlaps the same way.
  */
 
-import { spawnSync } from 'node:child_process';
+import { spawn } from 'node:child_process';
+import { once } from 'node:events';
 import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { basename, join, resolve } from 'node:path';
@@ -12,6 +14,7 @@ import { cellCentre } from '../../shared/analysis/grid.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
 import { booleanPointInPolygon } from '@turf/turf';
 import type { FeatureCollection, MultiPolygon } from 'geojson';
+import { groundFit } from './groundFit.ts';
 import type { SimulatedBlock } from './simulatedBlock.ts';
 import { writeCase, type FileCase } from './simulatedFiles.ts';
 
@@ -20,8 +23,8 @@ export interface PipelineOptions {
   readonly cellSizeM: number;
   /** Folder with block.geojson, vigour_rednir.tif, ec.csv, dem.tif, soil.zip and samples.csv, instead of generated files. */
   readonly dataFolder: string | null;
-  /** Another program on the same files; {data}, {out} and {cell} are filled in. */
-  readonly against: string | null;
+  /** Other programs on the same files, each leaving zones.geojson in {out}; {data}, {out} and {cell} are filled in. */
+  readonly against: readonly string[];
 }
 
 const program = resolve(import.meta.dirname, '../../scripts/zone.mjs');
@@ -34,53 +37,64 @@ type Zones = FeatureCollection<MultiPolygon, { zone: number }>;
 
 interface Measured {
   readonly wallSeconds: number;
-  readonly peakMemoryMb: number | null;
+  readonly peakMemoryMb: number;
 }
 
-export function benchPipeline(options: PipelineOptions): unknown[] {
+export async function benchPipeline(options: PipelineOptions): Promise<unknown[]> {
   if (options.dataFolder !== null) {
-    const { zones: _drawn, ...measured } = measureFolder(basename(options.dataFolder), options.dataFolder, options);
+    const { zones: _drawn, ...measured } = await measureFolder(basename(options.dataFolder), options.dataFolder, options);
     return [measured];
   }
-  return generated.map((wanted) => {
+  const rows: unknown[] = [];
+  for (const wanted of generated) {
     const folder = mkdtempSync(join(tmpdir(), 'zoning-bench-'));
     try {
       const { block, megapixels } = writeCase(folder, wanted);
-      const { zones, ...measured } = measureFolder(wanted.name, folder, options);
-      return { ...measured, megapixels, zonesTrue: block.k, agreement: agreementWith(block, zones) };
+      const { zones, ...measured } = await measureFolder(wanted.name, folder, options);
+      rows.push({ ...measured, megapixels, zonesTrue: block.k, agreement: agreementWith(block, zones) });
     } finally {
       rmSync(folder, { recursive: true, force: true });
     }
-  });
+  }
+  return rows;
 }
 
-function measureFolder(name: string, folder: string, { runs, cellSizeM, against }: PipelineOptions) {
+async function measureFolder(name: string, folder: string, { runs, cellSizeM, against }: PipelineOptions) {
   const out = mkdtempSync(join(tmpdir(), 'zoning-out-'));
-  const [ours, theirs]: [Measured[], Measured[]] = [[], []];
-  runZone(folder, out, cellSizeM);
+  const ours: Measured[] = [];
+  const others = against.map((template) => ({ template, runs: [] as Measured[], out: mkdtempSync(join(tmpdir(), 'zoning-other-')) }));
+  await runZone(folder, out, cellSizeM);
   for (let run = 0; run < runs; run++) {
-    ours.push(runZone(folder, out, cellSizeM));
-    if (against !== null) theirs.push(runOther(against, { data: folder, out, cell: String(cellSizeM) }));
+    ours.push(await runZone(folder, out, cellSizeM));
+    for (const other of others) other.runs.push(await runOther(other.template, { data: folder, out: other.out, cell: String(cellSizeM) }));
   }
-  const report = JSON.parse(readFileSync(join(out, 'report.json'), 'utf8')) as Record<string, unknown> & { secondsPerStage: Record<string, number>; peakMemoryMb: number };
-  const zones = JSON.parse(readFileSync(join(out, 'zones.geojson'), 'utf8')) as Zones;
-  rmSync(out, { recursive: true, force: true });
+  const block = readJson<Zones>(join(folder, 'block.geojson'));
+  const wallSeconds = median(ours.map((one) => one.wallSeconds));
+  const compared = others.map(({ template, runs: theirs, out: left }) => {
+    const zones = join(left, 'zones.geojson');
+    const seconds = median(theirs.map((one) => one.wallSeconds));
+    return { command: template, wallSeconds: seconds, ratio: wallSeconds / seconds, peakMemoryMb: median(theirs.map((one) => one.peakMemoryMb)), ...(existsSync(zones) ? groundFit(block, readJson<Zones>(zones)) : {}) };
+  });
+  const report = readJson<Record<string, unknown> & { secondsPerStage: Record<string, number>; peakMemoryMb: number }>(join(out, 'report.json'));
+  const zones = readJson<Zones>(join(out, 'zones.geojson'));
+  for (const left of [out, ...others.map((other) => other.out)]) rmSync(left, { recursive: true, force: true });
   const decoding = Object.entries(report.secondsPerStage).filter(([stage]) => stage.startsWith('layer ')).reduce((sum, [, seconds]) => sum + seconds, 0);
   return {
     name,
     cellSizeM,
-    wallSeconds: median(ours.map(({ wallSeconds }) => wallSeconds)),
-    peakMemoryMb: median(ours.map(({ peakMemoryMb }) => peakMemoryMb!)),
+    wallSeconds,
+    peakMemoryMb: median(ours.map((one) => one.peakMemoryMb)),
+    ...groundFit(block, zones),
     secondsPerStage: report.secondsPerStage,
     shareOfReadingLayers: decoding / Object.values(report.secondsPerStage).reduce((sum, seconds) => sum + seconds, 0),
     verdict: (report.verdict as { verdict: string }).verdict,
     zonesAdvised: report.zonesAdvised,
     zones,
-    ...(theirs.length === 0 ? {} : { otherWallSeconds: median(theirs.map(({ wallSeconds }) => wallSeconds)), ratio: median(ours.map(({ wallSeconds }) => wallSeconds)) / median(theirs.map(({ wallSeconds }) => wallSeconds)) }),
+    ...(compared.length === 0 ? {} : { against: compared }),
   };
 }
 
-function runZone(folder: string, out: string, cellSizeM: number): Measured {
+function runZone(folder: string, out: string, cellSizeM: number): Promise<Measured> {
   const given = (names: readonly string[]) => names.map((name) => join(folder, name)).find(existsSync);
   const layers = [
     ['ndvi', given(['vigour.tif', 'vigour_rednir.tif']), '#red=1,nir=2'],
@@ -90,22 +104,39 @@ function runZone(folder: string, out: string, cellSizeM: number): Measured {
   ].flatMap(([type, path, rest]) => (path === undefined ? [] : ['--layer', `${type}=${path}${rest}`]));
   const readings = given(['samples.csv']);
   const args = ['--block', join(folder, 'block.geojson'), ...layers, ...(readings === undefined ? [] : ['--readings', readings]), '--cell', String(cellSizeM), '--out', join(out, 'zones.geojson'), '--report', join(out, 'report.json')];
-  const measured = timed(process.execPath, [program, ...args]);
-  const { peakMemoryMb } = JSON.parse(readFileSync(join(out, 'report.json'), 'utf8')) as { peakMemoryMb: number };
-  return { ...measured, peakMemoryMb };
+  return timed(process.execPath, [program, ...args]);
 }
 
-function runOther(template: string, fill: Record<string, string>): Measured {
+function runOther(template: string, fill: Record<string, string>): Promise<Measured> {
   const [command, ...args] = template.split(' ').map((word) => word.replace(/\{(\w+)\}/g, (_, name: string) => fill[name] ?? ''));
   return timed(command!, args);
 }
 
 /** Single-threaded arithmetic for libraries that would spread over all cores by themselves. */
-function timed(command: string, args: readonly string[]): Measured {
+async function timed(command: string, args: readonly string[]): Promise<Measured> {
   const start = performance.now();
-  const { status, stderr } = spawnSync(command, args, { encoding: 'utf8', env: { ...process.env, OMP_NUM_THREADS: '1', OPENBLAS_NUM_THREADS: '1' } });
-  if (status !== 0) throw new Error(`${command} ended with ${status}: ${stderr.slice(-500)}`);
-  return { wallSeconds: (performance.now() - start) / 1000, peakMemoryMb: null };
+  const child = spawn(command, args, { stdio: ['ignore', 'ignore', 'pipe'], env: { ...process.env, OMP_NUM_THREADS: '1', OPENBLAS_NUM_THREADS: '1' } });
+  let said = '';
+  let peakMemoryMb = 0;
+  child.stderr.setEncoding('utf8').on('data', (text: string) => (said += text));
+  const watch = setInterval(() => (peakMemoryMb = Math.max(peakMemoryMb, highestMb(child.pid!))), 20);
+  const [status] = (await once(child, 'exit')) as [number];
+  clearInterval(watch);
+  if (status !== 0) throw new Error(`${command} ended with ${status}: ${said.slice(-500)}`);
+  return { wallSeconds: (performance.now() - start) / 1000, peakMemoryMb };
+}
+
+/** The system's own high-water mark of a process; 0 when it has ended. */
+function highestMb(processId: number): number {
+  try {
+    return Number(/VmHWM:\s+(\d+)/.exec(readFileSync(`/proc/${processId}/status`, 'utf8'))?.[1] ?? 0) / 1024;
+  } catch {
+    return 0;
+  }
+}
+
+function readJson<Shape>(file: string): Shape {
+  return JSON.parse(readFileSync(file, 'utf8')) as Shape;
 }
 
 /** Adjusted Rand index of the drawn zones with the truth, on some thousand cells. */

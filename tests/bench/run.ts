@@ -3,7 +3,7 @@
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
  * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
- * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}']   speed, as JSON
+ * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}'] …   speed, as JSON
  */
 
 import { parseArgs } from 'node:util';
@@ -26,7 +26,7 @@ const { values } = parseArgs({
     runs: { type: 'string', default: '3' },
     cell: { type: 'string', default: '2' },
     data: { type: 'string' },
-    against: { type: 'string' },
+    against: { type: 'string', multiple: true },
   },
 });
 
@@ -38,7 +38,7 @@ else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), 
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);
 else if (values.plan) for (const row of benchPlan(Number(values.runs))) print(row);
-else print(benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? null }));
+else print(await benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? [] }));
 
 /** Every setting, then the groups. */
 function coverageRows(seasons: number): object[] {

@@ -32,7 +32,7 @@ export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: Z
       return { kind: 'replace', runs: runsFromLabels(cellLabels), reason: 'snapped' };
     }
     case 'clean':
-      return { kind: 'clean', minPatchHa: operation.smallestPatchHa };
+      return { kind: 'clean', minPatchHa: operation.smallestPatchHa, narrowestM: operation.narrowestRows * ground.block.rowSpacingM };
     default:
       return operation;
   }

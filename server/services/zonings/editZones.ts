@@ -140,9 +140,14 @@ function requireDraft(zoning: Zoning): void {
 
 async function requireRevision(access: Access, zoning: Zoning, revision: number): Promise<void> {
   if (zoning.revision === revision) return;
-  const last = await AuditEntry.query().where({ estateId: access.estateId, subjectType: 'zoning', subjectId: zoning.id }).whereLike('action', 'zones.%').orderBy('id', 'desc').first();
+  const last = await lastChange(access, zoning.id);
   const who = last?.personId ? ((await Person.query().findById(last.personId))?.name ?? 'Somebody') : 'Somebody';
   throw new Stale('zonesChanged', `${who} changed these zones since you read them. Load them again; your step was not taken.`, { revision: zoning.revision, who });
+}
+
+/** The last act on a zoning that changed its zones. */
+export async function lastChange(access: Access, zoningId: string): Promise<AuditEntry | undefined> {
+  return AuditEntry.query().where({ estateId: access.estateId, subjectType: 'zoning', subjectId: zoningId }).whereLike('action', 'zones.%').whereNot({ action: 'zones.export' }).orderBy('id', 'desc').first();
 }
 
 export async function lockZoning(trx: Transaction, access: Access, zoningId: string, revision: number): Promise<Zoning> {

@@ -1,13 +1,14 @@
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
-import type { ExportFormatLine } from '../../../shared/contracts/zonings.ts';
+import type { ExportFormatLine, ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
-import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import { decodeFloatCells, encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { exportFormats } from '../../exporters/formats.ts';
 import type { ExportedRun, ExportedZone, ZoneExport } from '../../exporters/zoneExport.ts';
 import { gridOf, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { loadBlockLayers } from '../../ground/zoneLayers.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Zoning } from '../../models/Zoning.ts';
@@ -24,13 +25,13 @@ export function listFormats(): ExportFormatLine[] {
 export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null }): Promise<{ name: string; type: string; body: Buffer }> {
   const format = exportFormats.find(({ id }) => id === asked.format);
   if (!format) throw new Unusable('unknownFormat', `There is no format "${asked.format}". Choose one of ${exportFormats.map(({ id }) => id).join(', ')}.`);
-  const input = await exportInput(access, zoningId, asked.zones);
-  const body = format.write(input);
+  const input = await exportInput(access, zoningId, { zones: asked.zones, withLayers: format.withLayers === true });
+  const body = await format.write(input);
   await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
-  return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`], format.extension), type: format.mediaType, body };
+  return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.withLayers ? ['layers'] : [])], format.extension), type: format.mediaType, body };
 }
 
-async function exportInput(access: Access, zoningId: string, zones: number | null): Promise<ZoneExport> {
+async function exportInput(access: Access, zoningId: string, { zones, withLayers }: { zones: number | null; withLayers: boolean }): Promise<ZoneExport> {
   const view = await viewZoning(access, zoningId, zones);
   if (view.zones.length === 0) throw new Clash('notReady', 'This zoning has no zones that could be exported.');
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
@@ -42,8 +43,14 @@ async function exportInput(access: Access, zoningId: string, zones: number | nul
   const exported: ExportedZone[] = view.zones.map(({ number, name, colour, areaM2, vines, missing, geometry }) => ({ number, name, colour, areaM2, vines, missing, polygonsLonLat: geometry.coordinates as unknown as MultiPolygonLonLat }));
   return {
     estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, madeAt: zoning.createdAt,
-    zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 },
+    zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 }, layers: withLayers ? await layerCells(access, view, zoning) : [],
   };
+}
+
+async function layerCells(access: Access, view: ZoningView, zoning: Zoning): Promise<ZoneExport['layers']> {
+  const placed = (await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId))).filter((one) => one.placed.gridKey === zoning.gridKey);
+  if (placed.length === 0) throw new Clash('noLayers', 'The layers of this zoning no longer lie on this outline. Place them again, or choose another format.');
+  return placed.map(({ layer, placed: on }) => ({ name: layer.name, unit: layer.unit, cells: decodeFloatCells(on.cells) }));
 }
 
 /** Runs along the rows in the numbers that the posts carry. */

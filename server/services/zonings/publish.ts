@@ -1,5 +1,6 @@
 import { adjustedRandIndex } from '../../../shared/analysis/agreement.ts';
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import { vinesApart } from '../../../shared/analysis/zonePairs.ts';
 import type { PublishEffects, ZoningComparison } from '../../../shared/contracts/zonings.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
@@ -60,17 +61,19 @@ export async function compareZonings(access: Access, zoningId: string, otherId: 
   const ground = await loadBlockVines(access.estateId, one.blockId);
   const [a, b] = await Promise.all([zonesShown(access, one, ground), zonesShown(access, other, ground)]);
   const both = [...a.keys()].filter((vine) => a[vine]! > 0 && b[vine]! > 0);
+  const zonesOf = (zones: Uint8Array) => both.map((vine) => zones[vine]!);
   const pairs = groupBy(both, (vine) => `${a[vine]} ${b[vine]}`);
   return {
     vines: both.length,
     vinesMoved: both.filter((vine) => a[vine] !== b[vine]).length,
-    adjustedRand: adjustedRandIndex(both.map((vine) => a[vine]!), both.map((vine) => b[vine]!)),
+    vinesApart: vinesApart(zonesOf(a), zonesOf(b)),
+    adjustedRand: adjustedRandIndex(zonesOf(a), zonesOf(b)),
     pairs: [...pairs.values()].map((vines) => ({ from: a[vines[0]!]!, to: b[vines[0]!]!, vines: vines.length })).sort((x, y) => x.from - y.from || x.to - y.to),
   };
 }
 
 /** Zones of the vines as a page shows them: those kept, or the advised ones of a proposal. */
-async function zonesShown(access: Access, zoning: Zoning, ground: BlockVines): Promise<Uint8Array> {
+export async function zonesShown(access: Access, zoning: Zoning, ground: BlockVines): Promise<Uint8Array> {
   requireSameOutline(zoning, ground);
   if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', `Zoning ${zoning.number} has no result to compare.`);
   const { labels, gridKey } = await readLabels(access, zoning.id, null);

@@ -42,8 +42,8 @@ export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<Zonin
   if (zoning.gridKey !== grid.key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
   const found = await loadBlockLayers(zoning.estateId, zoning.blockId, options.layers.map(({ layerId }) => layerId));
   const layers = found.map((entry) => zoningLayer(entry, options.layers.find(({ layerId }) => layerId === entry.layer.id)!.weight));
-  const { zones, standardise, smoothingM, smallestPatchHa, principalComponents } = options;
-  return { grid, layers, readings: await fruitOf(zoning, ground, grid), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed: zoning.seed, drawAll: true } };
+  const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, principalComponents } = options;
+  return { grid, layers, readings: await fruitOf(zoning, ground, grid), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, principalComponents, seed: zoning.seed, drawAll: true } };
 }
 
 /** The newest visit of each measure of fruit in the zoning's season, up to the moment it was asked for. */

@@ -3,6 +3,7 @@ import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import type { Zone as TracedZone, ZoneDifference, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
+import type { FruitCheck } from '../../../shared/analysis/verdictFruit.ts';
 import type { VerdictResult } from '../../../shared/analysis/verdict.ts';
 import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type ZoningView } from '../../../shared/contracts/zonings.ts';
 import { sampleSize } from '../../../shared/sampling/sampleSize.ts';
@@ -26,6 +27,7 @@ interface StoredEvidence {
   alsoOffer: number[];
   bestSeveral: number;
   warnings: ZoningWarning[];
+  fruit?: FruitCheck;
 }
 
 interface StoredCandidate {
@@ -83,7 +85,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
   return {
     ...line!,
     blockName: ground.block.name,
-    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, principalComponents: false },
+    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, principalComponents: false },
     engineVersion: zoning.engineVersion,
     layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
     isJudged: verdict?.isJudged ?? false,
@@ -92,6 +94,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     evidence: evidence ? await evidenceRows(access, evidence.rows, ground) : [],
     differences: stored ? [...stored.differences] : [],
     warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
+    fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
     shown: count,
     zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
     problem: job?.problem ?? null,

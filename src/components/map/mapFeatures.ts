@@ -2,7 +2,7 @@ import type { Feature, FeatureCollection, Geometry } from 'geojson';
 import { extentOf, namePlace, ringsOf, visualCentre } from '../../lib/mapPlaces.ts';
 import type { ContourLine } from '../../lib/contourLines.ts';
 import { patternName } from './mapImages.ts';
-import type { MapBlock, MapCorners, MapGhost, MapLine, MapPoint, MapRow, MapZone } from './mapTypes.ts';
+import type { AreaGeometry, MapBlock, MapCorners, MapGhost, MapLine, MapPoint, MapRow, MapZone } from './mapTypes.ts';
 
 /** Turns what a view gives the map into GeoJSON for the map's sources. */
 
@@ -24,7 +24,12 @@ export function nameFeatures(blocks: readonly MapBlock[]): FeatureCollection {
 }
 
 export function zoneFeatures(zones: readonly MapZone[]): FeatureCollection {
-  return collection(zones.map((zone) => feature(zone.geometry, { id: zone.id, blockId: zone.blockId, pattern: patternName(zone.zone, zone.set ?? 'ordered', zone.count) })));
+  return collection(zones.map((zone) => feature(zone.geometry, { id: zone.id, blockId: zone.blockId, pattern: patternName(zone) })));
+}
+
+/** Ground in doubt, one feature or none. */
+export function doubtFeatures(geometry: AreaGeometry | null): FeatureCollection {
+  return collection(geometry === null ? [] : [feature(geometry, {})]);
 }
 
 export function pillFeatures(zones: readonly MapZone[]): FeatureCollection {

@@ -34,14 +34,22 @@ function put(map: MlMap, name: string, { width, height, draw }: { width: number;
   map.addImage(name, image, { pixelRatio: ratio });
 }
 
-export function patternName(zone: number, set: ColourSet, count: number): string {
-  return `zone-${set}-${Math.min(6, count)}-${zone}`;
+interface ZoneLook {
+  readonly zone: number;
+  readonly set?: ColourSet;
+  readonly count: number;
+  readonly colour?: string | null;
 }
 
-export function addZonePattern(map: MlMap, { zone, set, count }: { zone: number; set: ColourSet; count: number }): void {
-  const name = patternName(zone, set, count);
+export function patternName({ zone, set = 'ordered', count, colour = null }: ZoneLook): string {
+  return `zone-${set}-${Math.min(6, count)}-${zone}${colour ?? ''}`;
+}
+
+export function addZonePattern(map: MlMap, look: ZoneLook): void {
+  const name = patternName(look);
   if (map.hasImage(name)) return;
-  const tile = patternTile({ ...zoneStyle(zone, { set, count }), ratio });
+  const { zone, set, count, colour } = look;
+  const tile = patternTile({ ...zoneStyle(zone, { set, count, own: colour ? { [zone]: colour } : {} }), ratio });
   const image = tile?.getContext('2d')?.getImageData(0, 0, tile.width, tile.height);
   if (image) map.addImage(name, image, { pixelRatio: ratio });
 }
@@ -80,6 +88,18 @@ export function addRestriction(map: MlMap, ink: ImageInk): void {
     pen.strokeStyle = ink.brick;
     pen.lineWidth = 2.4;
     pen.stroke(new Path2D('M-2 -2L11 11M-2 7L2 11M7 -2L11 2'));
+  } });
+}
+
+/** Light hatch over the zones' own patterns: here another zone fits nearly as well. */
+export function addDoubt(map: MlMap, ink: ImageInk): void {
+  put(map, 'doubt', { width: 8, height: 8, draw: (pen) => {
+    pen.strokeStyle = ink.sheet;
+    pen.lineWidth = 3.2;
+    pen.stroke(new Path2D('M-2 -2L10 10M-2 6L2 10M6 -2L10 2'));
+    pen.strokeStyle = ink.ink;
+    pen.lineWidth = 1.2;
+    pen.stroke(new Path2D('M-2 -2L10 10M-2 6L2 10M6 -2L10 2'));
   } });
 }
 

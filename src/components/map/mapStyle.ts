@@ -19,7 +19,7 @@ export interface MapInk {
   readonly muted: string;
 }
 
-export const mapSources = ['contours', 'lines', 'leader', 'blocks', 'zones', 'rows', 'rowEnds', 'ghosts', 'ghostFlags', 'points', 'pills', 'names'] as const;
+export const mapSources = ['contours', 'lines', 'leader', 'blocks', 'zones', 'doubt', 'rows', 'rowEnds', 'ghosts', 'ghostFlags', 'points', 'pills', 'names'] as const;
 export type MapSource = (typeof mapSources)[number];
 
 /** Images of the relief go under this layer, layer cells under the next. */
@@ -44,6 +44,7 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'block-halo', type: 'line', source: 'blocks', layout: { 'line-join': 'round' }, paint: { 'line-color': ink.ground, 'line-width': 7 } },
     { id: 'block-fill', type: 'fill', source: 'blocks', paint: { 'fill-color': ink.ground, 'fill-opacity': 0.55 } },
     { id: 'zone-fill', type: 'fill', source: 'zones', paint: { 'fill-pattern': ['get', 'pattern'], 'fill-antialias': false } },
+    { id: 'doubt-fill', type: 'fill', source: 'doubt', paint: { 'fill-pattern': 'doubt', 'fill-antialias': false, 'fill-opacity': 0.75 } },
     // A light line in a dark groove holds on the darkest and the lightest zone alike.
     ...rowLines('rows-third', { minzoom: 16, maxzoom: 18, filter: ['get', 'third'] }),
     ...rowLines('rows-all', { minzoom: 18 }),

@@ -22,6 +22,8 @@ export interface MapZone {
   readonly name?: string;
   readonly geometry: AreaGeometry;
   readonly set?: ColourSet;
+  /** A colour that people gave the zone, in place of the set's. */
+  readonly colour?: string | null;
   /** Zones of the whole block, for the ordered colours. */
   readonly count: number;
 }

@@ -1,6 +1,6 @@
 import type { Map as MlMap } from 'maplibre-gl';
 import { computed, watch, type ShallowRef } from 'vue';
-import { addFlag, addPill, addPointMarks, addRestriction, addZonePattern, type ImageInk } from './mapImages.ts';
+import { addDoubt, addFlag, addPill, addPointMarks, addRestriction, addZonePattern, type ImageInk } from './mapImages.ts';
 import type { MapGhost, MapZone } from './mapTypes.ts';
 import { useTheme, useTokens } from '../../composables/useTheme.ts';
 
@@ -19,15 +19,16 @@ export function useMapImages(map: ShallowRef<MlMap | null>, { zones, ghosts, gho
   watch([map, theme], ([ready]) => {
     if (!ready) return;
     addRestriction(ready, ink.value);
+    addDoubt(ready, ink.value);
     addPointMarks(ready, ink.value);
     for (const number of new Set(zones().map(({ zone }) => zone))) addPill(ready, String(number), ink.value);
   }, { immediate: true });
 
   watch([map, zones], ([ready, now]) => {
     if (!ready) return;
-    for (const { zone, set = 'ordered', count } of now) {
-      addZonePattern(ready, { zone, set, count });
-      if (!ready.hasImage(`pill-${zone}`)) addPill(ready, String(zone), ink.value);
+    for (const look of now) {
+      addZonePattern(ready, look);
+      if (!ready.hasImage(`pill-${look.zone}`)) addPill(ready, String(look.zone), ink.value);
     }
   }, { immediate: true });
 

@@ -61,6 +61,8 @@ export interface StripChoice {
 export interface StripColours {
   readonly set: ColourSet;
   readonly count: number;
+  /** Colours that people gave zones, by zone number. */
+  readonly own?: Readonly<Record<number, string>>;
 }
 
 /** "whole" 11 px a row, "reading" 22 px. */

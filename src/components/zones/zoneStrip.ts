@@ -1,16 +1,18 @@
 import type { BlockView } from '../../../shared/contracts/blocks.ts';
 import type { BlockRowView } from '../../../shared/contracts/rows.ts';
-import type { ZoneOperation } from '../../../shared/contracts/zonings.ts';
+import type { ZoneOperation, ZoneView, ZoningDoubt } from '../../../shared/contracts/zonings.ts';
 import { defineGrid } from '../../../shared/analysis/grid.ts';
+import { withoutNarrow } from '../../../shared/analysis/labelsNarrow.ts';
+import { cellsForArea, smallPatches } from '../../../shared/analysis/sieve.ts';
 import { labelVines, rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { rowsFromStored } from '../../../shared/geo/storedRows.ts';
 import { vineTable } from '../../../shared/geo/vines.ts';
 import type { StripChoice, StripRow } from '../rowstrip/rowStripTypes.ts';
-import { stripRows } from '../sampling/stripOfPlan.ts';
+import { placeInRow, stripRows } from '../sampling/stripOfPlan.ts';
 
 /** Rows of a block for the strip, with the zones of a zoning's labels: the same reading of vines as the server's. */
-export function zonedStripRows(block: BlockView, rows: readonly BlockRowView[], labels: Uint8Array): StripRow[] {
+export function zonedStripRows(block: BlockView, rows: readonly BlockRowView[], labels: Uint8Array, doubtful: ZoningDoubt['runs'] = []): StripRow[] {
   const boundary = block.boundary.coordinates as unknown as MultiPolygonLonLat;
   const grid = defineGrid(boundary, block.cellSizeM);
   const laid = rowsFromStored({ boundary, rowBearingDeg: block.rowBearingDeg, epsg: block.epsg }, rows as never);
@@ -21,7 +23,24 @@ export function zonedStripRows(block: BlockView, rows: readonly BlockRowView[], 
     const id = rows[run.rowIndex]!.id;
     runs.set(id, [...(runs.get(id) ?? []), { zone: run.label, from: run.fromOrdinal, to: run.toOrdinal }]);
   }
-  return stripRows(rows, runs as never, { start: block.startPostColour, end: block.endPostColour });
+  const drawn = stripRows(rows, runs as never, { start: block.startPostColour, end: block.endPostColour });
+  return drawn.map((row, at) => ({ ...row, doubtful: doubtful.filter(({ rowId }) => rowId === row.id).map(({ from, to }) => ({ from: placeInRow(rows[at]!, from), to: placeInRow(rows[at]!, to) })) }));
+}
+
+/** Patches below the smallest that can be worked, and zones with a strip too narrow: what a hand edit may have left. */
+export function tooSmall(block: BlockView, labels: Uint8Array, { smallestPatchHa, narrowestRows }: { smallestPatchHa: number; narrowestRows: number }): { patches: number; narrow: number[] } {
+  const grid = defineGrid(block.boundary.coordinates as unknown as MultiPolygonLonLat, block.cellSizeM);
+  if (labels.length !== grid.cols * grid.rows) return { patches: 0, narrow: [] };
+  const patches = smallPatches(labels, grid.cols, { minCells: cellsForArea(smallestPatchHa, grid.cellSizeM) }).length;
+  const widthM = narrowestRows * block.rowSpacingM;
+  if (widthM <= grid.cellSizeM) return { patches, narrow: [] };
+  const cleaned = withoutNarrow(labels, grid.cols, { widthM, cellSizeM: grid.cellSizeM });
+  return { patches, narrow: [...new Set(labels.filter((label, cell) => cleaned[cell] !== label))].sort((a, b) => a - b) };
+}
+
+/** Own colours of zones by number, as maps and strips take them. */
+export function ownColoursOf(zones: readonly Pick<ZoneView, 'number' | 'colour'>[]): Record<number, string> {
+  return Object.fromEntries(zones.flatMap(({ number, colour }) => (colour ? [[number, colour]] : [])));
 }
 
 /** The rows or parts of rows that stand chosen, by permanent row and vine ordinals, as an edit asks for them. */

@@ -21,6 +21,12 @@ export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; 
   return { answer, rest: sentences.join(' '), below: [...also, differenceWords(zoning, { t, format }), t('zones.saysNothing')].filter((text) => text !== '').join(' ') };
 }
 
+/** What an adjusted Rand index means, in five steps of our own. */
+export function agreementWord(adjustedRand: number): 'same' | 'much' | 'partly' | 'little' | 'chance' {
+  const steps = [[0.9, 'same'], [0.65, 'much'], [0.4, 'partly'], [0.15, 'little']] as const;
+  return steps.find(([least]) => adjustedRand >= least)?.[1] ?? 'chance';
+}
+
 function reasonWords(zoning: ZoningView, code: string, { t, format }: { t: Translate; format: Format }): string {
   const reason = zoning.reasons.find((candidate) => candidate.code === code)!;
   const figures = Object.fromEntries(Object.entries(reason.figures).map(([name, value]) => [name, value === null ? '' : format.number(value, 2)]));

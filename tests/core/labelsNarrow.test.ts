@@ -1,0 +1,48 @@
+import { describe, expect, it } from 'vitest';
+import { withoutNarrow } from '../../shared/analysis/labelsNarrow.ts';
+import { pairZones, vinesApart } from '../../shared/analysis/zonePairs.ts';
+import { seasonAgreement } from '../../shared/analysis/seasonAgreement.ts';
+
+const read = (rows: string) => ({ cols: rows.split(' ')[0]!.length, labels: Uint8Array.from([...rows.replaceAll(' ', '')].map(Number)) });
+const picture = (labels: Uint8Array, cols: number) => Array.from({ length: labels.length / cols }, (_, row) => [...labels.slice(row * cols, (row + 1) * cols)].join('')).join(' ');
+const after = (rows: string, widthM: number) => {
+  const { cols, labels } = read(rows);
+  return picture(withoutNarrow(labels, cols, { widthM, cellSizeM: 1 }), cols);
+};
+
+describe('parts too narrow to work', () => {
+  it('join what lies beside them: a strip of one, a tongue but for its root', () => {
+    expect(after('11111111 11111111 11111111 22222222 11111111 11111111 11111111', 3)).toBe('11111111 '.repeat(7).trim());
+    const tongue = after('111111111111 111111111111 111111111111 222222221111 222211111111 222211111111 222211111111 222211111111', 3);
+    expect(tongue.split(' ')[3]).toMatch(/^22221{8}$|^222221{7}$/);
+  });
+
+  it('stay where the zones are wide, corners included', () => {
+    const square = '111112222 111112222 111112222 111112222 111112222 333332222 333332222 333332222 333332222';
+    expect(after(square, 3)).toBe(square);
+  });
+
+  it('are judged by other zones, not by the edge of the block', () => {
+    expect(after('0000 1111 1111 0000', 4)).toBe('0000 1111 1111 0000');
+  });
+});
+
+describe('zones of two maps', () => {
+  it('are paired by the vines they share, whatever their numbers', () => {
+    expect(pairZones([1, 1, 1, 2, 2, 3], [2, 2, 1, 1, 1, 1])).toEqual([{ from: 1, to: 2, vines: 2 }, { from: 2, to: 1, vines: 2 }]);
+    expect(vinesApart([1, 1, 2, 2], [2, 2, 1, 2])).toBe(1);
+    expect(vinesApart([1, 1, 2, 2], [2, 2, 1, 1])).toBe(0);
+  });
+});
+
+describe('a layer in two seasons', () => {
+  const values = Float32Array.from({ length: 90 }, (_, cell) => (cell * 37) % 90);
+  it('agrees with itself wholly, with its opposite in the middle third alone', () => {
+    expect(seasonAgreement(values, values.map((value) => 2 * value + 5))).toMatchObject({ cells: 90, rankCorrelation: expect.closeTo(1, 12), sameThird: 1 });
+    expect(seasonAgreement(values, values.map((value) => -value))).toMatchObject({ rankCorrelation: expect.closeTo(-1, 12), sameThird: expect.closeTo(1 / 3, 12) });
+  });
+  it('is not compared where hardly anything is common or a layer does not vary', () => {
+    expect(seasonAgreement(values, values.map((value, cell) => (cell < 20 ? value : NaN)))).toBeNull();
+    expect(seasonAgreement(values, values.map(() => 1))).toBeNull();
+  });
+});

@@ -147,7 +147,7 @@ async function requireRevision(access: Access, zoning: Zoning, revision: number)
 
 /** The last act on a zoning that changed its zones. */
 export async function lastChange(access: Access, zoningId: string): Promise<AuditEntry | undefined> {
-  return AuditEntry.query().where({ estateId: access.estateId, subjectType: 'zoning', subjectId: zoningId }).whereLike('action', 'zones.%').whereNot({ action: 'zones.export' }).orderBy('id', 'desc').first();
+  return AuditEntry.query().where({ estateId: access.estateId, subjectType: 'zoning', subjectId: zoningId }).whereLike('action', 'zones.%').whereNotIn('action', ['zones.export', 'zones.print']).orderBy('id', 'desc').first();
 }
 
 export async function lockZoning(trx: Transaction, access: Access, zoningId: string, revision: number): Promise<Zoning> {

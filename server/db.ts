@@ -9,6 +9,7 @@ import * as m005 from '../migrations/005_lots.ts';
 import * as m006 from '../migrations/006_lab.ts';
 import * as m007 from '../migrations/007_labels.ts';
 import * as m009 from '../migrations/009_field.ts';
+import * as m011 from '../migrations/011_surveys.ts';
 import * as m012 from '../migrations/012_invited_roles_and_backups.ts';
 import * as m010 from '../migrations/010_zoning_editors.ts';
 
@@ -22,6 +23,7 @@ const migrations: Record<string, Knex.Migration> = {
   '006_lab': m006,
   '007_labels': m007,
   '009_field': m009,
+  '011_surveys': m011,
   '012_invited_roles_and_backups': m012,
   '010_zoning_editors': m010,
 };

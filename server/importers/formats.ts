@@ -23,6 +23,7 @@ export interface ImportFormat {
 export const importFormats: readonly ImportFormat[] = [
   { id: 'geotiff', contents: ['geotiff'], endings: ['tif', 'tiff'], kind: 'raster', read: async (input, options) => (await inspectRaster(input, options)).understood },
   { id: 'shapefile', contents: ['zip'], endings: ['zip', 'kmz'], kind: 'vector', read: readVectors },
+  { id: 'geopackage', contents: ['geopackage'], endings: ['gpkg'], kind: 'vector', read: readVectors },
   { id: 'geojson', contents: ['geojson'], endings: ['geojson', 'json'], kind: 'vector', read: readVectors },
   { id: 'kml', contents: ['kml'], endings: ['kml'], kind: 'vector', read: readVectors },
   { id: 'gpx', contents: ['gpx'], endings: ['gpx'], kind: 'vector', read: readVectors },
@@ -46,7 +47,7 @@ function sniffContents(source: ByteSource, fileName: string): Sniffed {
 function unreadable({ format, foreignName }: Sniffed, file: string): ImportProblem {
   if (format === 'empty') return new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.', file });
   if (format === 'shapefile-part') return new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.', file });
-  const found = foreignName ?? (format === 'geopackage' ? 'a GeoPackage database' : 'XML of a kind that is not read');
-  const remedy = format === 'geopackage' ? 'Export its layer as a zipped shapefile or GeoJSON.' : 'Send a GeoTIFF, a zipped shapefile, GeoJSON, KML, KMZ, GPX or CSV.';
+  const found = foreignName ?? 'XML of a kind that is not read';
+  const remedy = 'Send a GeoTIFF, a zipped shapefile, GeoPackage, GeoJSON, KML, KMZ, GPX or CSV.';
   return new ImportProblem({ code: 'wrong-type', fact: `It is ${found}.`, remedy, params: { found }, file });
 }

@@ -20,6 +20,9 @@ export const limits = {
   /** Below this unpacked size a high ratio is harmless. */
   archiveRatioFromBytes: 4 * 2 ** 20,
 
+  /** A database is held in memory twice while it is read. */
+  databaseBytes: 160 * 2 ** 20,
+
   textBytes: 256 * 2 ** 20,
   jsonDepth: 64,
   xmlDepth: 200,

@@ -1,4 +1,4 @@
-import type { LayerFinding, LayerStatistics } from '../../shared/contracts/layers.ts';
+import type { AsideReading, LayerFinding, LayerStatistics, LayerSurvey } from '../../shared/contracts/layers.ts';
 import { EstateModel } from './BaseModel.ts';
 
 /** Who answers for using a layer with red findings, and why. */
@@ -11,7 +11,7 @@ export interface LayerOverride {
 
 export class BlockLayer extends EstateModel {
   static override tableName = 'block_layers';
-  static override jsonAttributes = ['statistics', 'findings', 'override'];
+  static override jsonAttributes = ['statistics', 'findings', 'override', 'survey'];
 
   declare layerId: string;
   declare blockId: string;
@@ -21,5 +21,6 @@ export class BlockLayer extends EstateModel {
   declare statistics: LayerStatistics;
   declare findings: LayerFinding[];
   declare override: LayerOverride | null;
+  declare survey: (LayerSurvey & { aside: AsideReading[] }) | null;
   declare createdAt: Date;
 }

@@ -1,5 +1,6 @@
 import { understandFile } from '../importers/formats.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
+import { speedColumn } from '../importers/points/speedColumn.ts';
 import type { PlaceInput, PlacedLayer } from './placed.ts';
 import { placePoints } from './placePoints.ts';
 import { placeRaster } from './placeRaster.ts';
@@ -30,5 +31,6 @@ async function layersOf(input: PlaceInput, report: Progress): Promise<PlacedLaye
   const name = source.answers.attribute!;
   const value = understood.numbers.get(name);
   if (value === undefined) throw new ImportProblem({ code: 'bad-request', fact: `Its column "${name}" holds no numbers.`, remedy: 'Choose another column.', params: { column: name }, file: source.fileName });
-  return placePoints(input, { lonLat: understood.pointsLonLat, value }, { name, reference: understood.reference?.name ?? null });
+  const speed = speedColumn(understood.numbers.keys());
+  return placePoints(input, { lonLat: understood.pointsLonLat, value, speed: speed === null ? undefined : understood.numbers.get(speed) }, { name, reference: understood.reference?.name ?? null });
 }

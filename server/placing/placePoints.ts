@@ -1,15 +1,22 @@
-import { cleanPoints } from '../../shared/analysis/cleanPoints.ts';
+import { cleanPoints, type CleanedPoints } from '../../shared/analysis/cleanPoints.ts';
 import { cellAt, defineGrid, type Grid } from '../../shared/analysis/grid.ts';
-import { inverseDistance, type ValuedPoints } from '../../shared/analysis/resamplePoints.ts';
+import type { ValuedPoints } from '../../shared/analysis/resamplePoints.ts';
+import { surveySurface, widestReachM, type SurveySurface } from '../../shared/analysis/surveySurface.ts';
+import { practicalRangeM } from '../../shared/analysis/variogramModel.ts';
 import { layerType } from '../../shared/catalog/layerTypes.ts';
 import { unitFactor } from '../../shared/catalog/sourceUnits.ts';
+import type { AsideReading } from '../../shared/contracts/layers.ts';
 import type { LonLat } from '../../shared/geo/coordinates.ts';
-import { toUtm } from '../../shared/geo/utm.ts';
-import type { PlaceInput, PlacedLayer } from './placed.ts';
+import { fromUtm, toUtm } from '../../shared/geo/utm.ts';
+import type { PlacedCells, PlaceInput, PlacedLayer } from './placed.ts';
 import { placeOnBlocks } from './placeRaster.ts';
 
-/** Cells farther than this from every point stay empty: beyond it a reading says nothing of the ground (judgement). */
-const reachM = 40;
+export interface PointReadings {
+  lonLat: readonly LonLat[];
+  value: Float64Array;
+  /** Speed of each reading where the file has a column of it. */
+  speed?: Float64Array | undefined;
+}
 
 export interface NamedValue {
   /** Column or field that holds the values. */
@@ -17,15 +24,20 @@ export interface NamedValue {
   reference: string | null;
 }
 
-/** A layer from points with a value, by inverse distance to the nearest twelve within reach (Shepard 1968). */
-export function placePoints({ source, blocks }: PlaceInput, points: { lonLat: readonly LonLat[]; value: Float64Array }, { name, reference }: NamedValue): PlacedLayer[] {
+/** A layer from points with a value: cleaned and spread over each block by itself. */
+export function placePoints({ source, blocks }: PlaceInput, points: PointReadings, { name, reference }: NamedValue): PlacedLayer[] {
   const { answers } = source;
   const type = answers.purpose === 'soil' ? 'soilNumber' : answers.purpose!;
   const factor = unitFactor(answers.purpose!, answers.unit);
-  const value = points.value.map((each) => each * factor);
+  const readings = { ...points, value: points.value.map((each) => each * factor) };
   const grids = blocks.map((block) => defineGrid(block.boundary, block.cellSizeM));
-  const cleaned = grids.map((grid) => cleanPoints(near(grid, points.lonLat, value), layerType(type)));
-  const placed = placeOnBlocks({ blocks, grids, cells: grids.map((grid, at) => inverseDistance(grid, cleaned[at]!.kept, { reachM })) }, (block, at) => ({
+  const surveys = grids.map((grid): Survey => {
+    const near = readingsNear(grid, readings);
+    const taken = answers.takenBack ?? [];
+    const cleaned = cleanPoints(near, { ...layerType(type), speed: near.speed, isOutside: outsideOf(grid, near), off: taken });
+    return { grid, near, cleaned, surface: surveySurface(grid, cleaned.kept), taken };
+  });
+  const placed = placeOnBlocks({ blocks, grids, cells: surveys.map(({ surface }) => surface.cells) }, (block, at) => ({
     type,
     index: answers.holds === undefined || answers.holds === 'other' ? null : answers.holds,
     measuredOn: answers.capturedOn ?? null,
@@ -33,29 +45,51 @@ export function placePoints({ source, blocks }: PlaceInput, points: { lonLat: re
     rowSpacingM: block.rowSpacingM,
     alleys: null,
     steelTrellis: answers.steelTrellis ?? null,
-    pointCount: insideCount(grids[at]!, cleaned[at]!.kept),
+    pointCount: insideCount(grids[at]!, surveys[at]!.cleaned.kept),
   }));
-  const noted = placed.map((block) => {
-    const { setAside } = cleaned[blocks.findIndex((each) => each.id === block.blockId)]!;
-    const removed = setAside.filter(({ count }) => count > 0).map(({ reason, count }) => ({ code: `pointsSetAside.${reason}`, severity: 'note' as const, params: { count } }));
-    return { ...block, findings: [...block.findings, ...removed] };
-  });
+  const withSurveys = placed.map((block): PlacedCells => ({ ...block, survey: surveyRecord(surveys[blocks.findIndex((each) => each.id === block.blockId)]!) }));
   const unit = type === 'soilNumber' ? (answers.unit ?? '') : layerType(type).unit;
-  return [{ type, derivedFrom: null, unit, value: name, classes: null, pixelSizeM: null, reference, blocks: noted }];
+  return [{ type, derivedFrom: null, unit, value: name, classes: null, pixelSizeM: null, reference, blocks: withSurveys }];
 }
 
-/** Points within reach of a grid, in its metres. */
-function near(grid: Grid, lonLat: readonly LonLat[], value: Float64Array): ValuedPoints {
+interface Near extends ValuedPoints {
+  readonly speed: Float64Array | null;
+}
+
+interface Survey {
+  grid: Grid;
+  near: Near;
+  cleaned: CleanedPoints;
+  surface: SurveySurface;
+  taken: NonNullable<PlaceInput['source']['answers']['takenBack']>;
+}
+
+/** Readings within reach of a grid, in its metres and in their order. */
+function readingsNear(grid: Grid, { lonLat, value, speed }: PointReadings): Near {
   const [x, y, kept]: [number[], number[], number[]] = [[], [], []];
   lonLat.forEach((position, at) => {
     const [east, north] = toUtm(position, grid.epsg);
-    const isNear = east > grid.x0 - reachM && east < grid.x0 + grid.cols * grid.cellSizeM + reachM && north < grid.y0 + reachM && north > grid.y0 - grid.rows * grid.cellSizeM - reachM;
+    const isNear = east > grid.x0 - widestReachM && east < grid.x0 + grid.cols * grid.cellSizeM + widestReachM && north < grid.y0 + widestReachM && north > grid.y0 - grid.rows * grid.cellSizeM - widestReachM;
     if (!isNear) return;
     x.push(east);
     y.push(north);
-    kept.push(value[at]!);
+    kept.push(at);
   });
-  return { x: Float64Array.from(x), y: Float64Array.from(y), value: Float64Array.from(kept) };
+  return { x: Float64Array.from(x), y: Float64Array.from(y), value: Float64Array.from(kept, (at) => value[at]!), speed: speed ? Float64Array.from(kept, (at) => speed[at]!) : null };
+}
+
+/** A block with readings enough of its own does not need those of the turning ground around it (judgement). */
+const enoughOfItsOwn = 100;
+
+function outsideOf(grid: Grid, near: ValuedPoints): (x: number, y: number) => boolean {
+  if (insideCount(grid, near) < enoughOfItsOwn) return () => false;
+  const touches = (x: number, y: number) => {
+    const cell = cellAt(grid, [x, y]);
+    return cell >= 0 && grid.share[cell]! > 0;
+  };
+  // A position is good to a metre or two: a cell next to the block still counts as the block.
+  const around = [-1, 0, 1].flatMap((east) => [-1, 0, 1].map((north) => [east * grid.cellSizeM, north * grid.cellSizeM] as const));
+  return (x, y) => !around.some(([east, north]) => touches(x + east, y + north));
 }
 
 function insideCount(grid: Grid, points: ValuedPoints): number {
@@ -65,4 +99,24 @@ function insideCount(grid: Grid, points: ValuedPoints): number {
     if (cell >= 0 && grid.inside[cell] === 1) count += 1;
   }
   return count;
+}
+
+/** More marks than this make a map slow and no clearer. */
+const mostMarks = 2000;
+
+function surveyRecord({ grid, near, cleaned, surface, taken }: Survey): NonNullable<PlacedCells['survey']> {
+  const { method, places, reachM, model, bins, standardError } = surface;
+  const step = Math.max(1, Math.ceil(cleaned.aside.length / mostMarks));
+  const aside = cleaned.aside.filter((_, at) => at % step === 0).map(({ point, reason }): AsideReading => {
+    const [lon, lat] = fromUtm([near.x[point]!, near.y[point]!], grid.epsg);
+    return { lonLat: [lon, lat], reason };
+  });
+  return {
+    method, places, reachM, standardError, aside,
+    readings: cleaned.kept.x.length,
+    model: model === null ? null : { ...model, rangeM: practicalRangeM(model) },
+    bins: [...bins],
+    setAside: cleaned.setAside.filter(({ count }) => count > 0),
+    taken: [...taken],
+  };
 }

@@ -1,6 +1,6 @@
 import type { LayerFinding } from '../../shared/analysis/layerFindings.ts';
 import type { ImportAnswers } from '../../shared/contracts/imports.ts';
-import type { LayerClass, LayerStatistics } from '../../shared/contracts/layers.ts';
+import type { AsideReading, LayerClass, LayerStatistics, LayerSurvey } from '../../shared/contracts/layers.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
 /** Texts of small files that came beside the file. */
@@ -40,6 +40,8 @@ export interface PlacedCells {
   coverage: number;
   statistics: LayerStatistics;
   findings: LayerFinding[];
+  /** Of points: how the surface was made, and what was set aside where. */
+  survey?: LayerSurvey & { aside: AsideReading[] };
 }
 
 /** Heights of the land round all blocks, coarse: for the map, never for a calculation. */

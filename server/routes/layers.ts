@@ -1,10 +1,11 @@
 import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { layerChange, overrideChange } from '../../shared/contracts/layers.ts';
+import { cleaningChange, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { readCells, readRelief } from '../services/layers/cells.ts';
 import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
+import { changeCleaning, readAside } from '../services/layers/survey.ts';
 import { listLayers } from '../services/layers/view.ts';
 
 const cellsQuery = z.object({ block: id });
@@ -30,6 +31,16 @@ export function layerRoutes(): Router {
   router.patch('/layers/:layerId', allow('layers.import'), async (request, response) => {
     await changeLayer(accessOf(request), idParam(request, 'layerId'), layerChange.parse(request.body));
     response.status(204).end();
+  });
+
+  router.get('/layers/:layerId/aside', allow('estate.see', 'read'), async (request, response) => {
+    const items = await readAside(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    response.json({ items, total: items.length });
+  });
+
+  router.put('/layers/:layerId/cleaning', allow('layers.import'), async (request, response) => {
+    const jobId = await changeCleaning(accessOf(request), idParam(request, 'layerId'), cleaningChange.parse(request.body));
+    response.status(202).json({ jobId });
   });
 
   router.post('/layers/:layerId/override', allow('layers.override'), async (request, response) => {

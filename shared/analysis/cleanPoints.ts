@@ -1,43 +1,66 @@
 /**
- * Points of a survey before they are spread over a grid. In: positions in metres and values. Out: the points kept, and how
- * many were set aside for which reason. Cost: one pass and a sort.
+ * Points of a survey before they are spread over a grid. In: positions in metres and values, in the order they were read.
+ * Out: the points kept, and those set aside, each with one reason. A reason that is switched off sets nothing aside.
+ * Cost: a few passes and a sort.
  */
+import { oddSpeeds } from './pointSpeeds.ts';
 import { spikes } from './pointSpikes.ts';
 import type { ValuedPoints } from './resamplePoints.ts';
 
-export type SetAsideReason = 'missing' | 'impossible' | 'samePlace' | 'spike';
+export const setAsideReasons = ['missing', 'impossible', 'outside', 'samePlace', 'speed', 'spike'] as const;
+export type SetAsideReason = (typeof setAsideReasons)[number];
 
 export interface CleanedPoints {
   readonly kept: ValuedPoints;
   readonly setAside: readonly { readonly reason: SetAsideReason; readonly count: number }[];
+  /** Index of each point set aside among those given, with its reason. */
+  readonly aside: readonly { readonly point: number; readonly reason: SetAsideReason }[];
+}
+
+export interface CleaningRules {
+  readonly min: number | null;
+  readonly max: number | null;
+  /** Speed of each reading as its file gives it, in any unit. */
+  readonly speed?: Float64Array | null;
+  /** True for places that are no ground of the block: turning ground and roads at its edge. */
+  readonly isOutside?: (x: number, y: number) => boolean;
+  /** Reasons that a person took back. */
+  readonly off?: readonly SetAsideReason[];
 }
 
 /** Readings closer together than this were taken standing still (judgement; a sensor on the move is a metre further on). */
 const samePlaceM = 0.05;
 
 /**
- * Drops points without a value, with a value the layer cannot hold (a negative conductivity), repeats at one place, of
- * which the first stays, and spikes. Points (0,0) 12, (0,0) 13, (5,0) -3, (9,0) 14 leave 12 and 14.
+ * Drops points without a value, with a value the layer cannot hold (a negative conductivity), outside the block, repeats at
+ * one place, of which the first stays, those read too slowly or too fast, and spikes.
+ * Points (0,0) 12, (0,0) 13, (5,0) -3, (9,0) 14 leave 12 and 14.
  */
-export function cleanPoints({ x, y, value }: ValuedPoints, { min, max }: { min: number | null; max: number | null }): CleanedPoints {
-  const counts: Record<SetAsideReason, number> = { missing: 0, impossible: 0, samePlace: 0, spike: 0 };
+export function cleanPoints({ x, y, value }: ValuedPoints, rules: CleaningRules): CleanedPoints {
+  const { speed = null, isOutside = () => false, off = [] } = rules;
+  const reasons = new Array<SetAsideReason | null>(x.length).fill(null);
+  const remaining = () => [...reasons.keys()].filter((point) => reasons[point] === null);
+  const pick = (from: Float64Array, points: readonly number[]) => Float64Array.from(points, (point) => from[point]!);
+  const picked = (points: readonly number[]) => ({ x: pick(x, points), y: pick(y, points), value: pick(value, points) });
+  const mark = (reason: SetAsideReason, is: (point: number) => boolean) => {
+    if (!off.includes(reason)) for (const point of remaining()) if (is(point)) reasons[point] = reason;
+  };
   const taken = new Set<string>();
-  const kept: number[] = [];
-  for (let point = 0; point < x.length; point++) {
-    const reason = reasonAgainst(value[point]!, { min, max }) ?? (isTaken(taken, x[point]!, y[point]!) ? 'samePlace' : null);
-    if (reason === null) kept.push(point);
-    else counts[reason] += 1;
-  }
-  const pick = (from: Float64Array, chosen: readonly number[]) => Float64Array.from(chosen, (point) => from[point]!);
-  const isSpike = spikes({ x: pick(x, kept), y: pick(y, kept), value: pick(value, kept) });
-  const calm = kept.filter((_, at) => isSpike[at] === 0);
-  counts.spike = kept.length - calm.length;
-  return { kept: { x: pick(x, calm), y: pick(y, calm), value: pick(value, calm) }, setAside: (Object.keys(counts) as SetAsideReason[]).map((reason) => ({ reason, count: counts[reason] })) };
-}
-
-function reasonAgainst(value: number, { min, max }: { min: number | null; max: number | null }): SetAsideReason | null {
-  if (Number.isNaN(value)) return 'missing';
-  return (min !== null && value < min) || (max !== null && value > max) ? 'impossible' : null;
+  // A point without a value can never be used, whatever a person wishes.
+  for (const point of remaining()) if (Number.isNaN(value[point]!)) reasons[point] = 'missing';
+  mark('impossible', (point) => (rules.min !== null && value[point]! < rules.min) || (rules.max !== null && value[point]! > rules.max));
+  mark('outside', (point) => isOutside(x[point]!, y[point]!));
+  mark('samePlace', (point) => isTaken(taken, x[point]!, y[point]!));
+  const moving = remaining();
+  const odd = oddSpeeds(picked(moving), speed === null ? null : pick(speed, moving));
+  const isOdd = new Set(moving.filter((_, at) => odd[at] === 1));
+  mark('speed', (point) => isOdd.has(point));
+  const calm = remaining();
+  const spiky = spikes(picked(calm));
+  const isSpike = new Set(calm.filter((_, at) => spiky[at] === 1));
+  mark('spike', (point) => isSpike.has(point));
+  const aside = reasons.flatMap((reason, point) => (reason === null ? [] : { point, reason }));
+  return { kept: picked(remaining()), setAside: setAsideReasons.map((reason) => ({ reason, count: aside.filter((each) => each.reason === reason).length })), aside };
 }
 
 function isTaken(taken: Set<string>, x: number, y: number): boolean {

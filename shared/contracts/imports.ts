@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { layerTypeIds } from '../catalog/layerTypes.ts';
 import { areaGeometry, id, isoDate, multiPolygonGeometry, shortName } from './common.ts';
+import { setAsideReasons } from '../analysis/cleanPoints.ts';
 import { newBlock } from './blocks.ts';
 
 const lonLat = z.tuple([z.number(), z.number()]);
@@ -49,6 +50,8 @@ export const importAnswers = z.object({
   steelTrellis: z.enum(['yes', 'no', 'unknown']).optional(),
   /** Field that names the outlines of a boundary file; null when none does. */
   nameField: z.string().max(300).nullable().optional(),
+  /** Reasons for setting readings aside that a person took back. */
+  takenBack: z.array(z.enum(setAsideReasons)).max(setAsideReasons.length).optional(),
   layerName: shortName.optional(),
 });
 export type ImportAnswers = z.infer<typeof importAnswers>;

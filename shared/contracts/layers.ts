@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { setAsideReasons } from '../analysis/cleanPoints.ts';
 import { layerTypeIds } from '../catalog/layerTypes.ts';
 import { id, isoDate, shortName } from './common.ts';
 
@@ -29,6 +30,30 @@ export const layerStatistics = z.object({
 });
 export type LayerStatistics = z.infer<typeof layerStatistics>;
 
+/** How a surface was made of point readings, and what was set aside before. */
+export const layerSurvey = z.object({
+  method: z.enum(['kriging', 'inverseDistance']),
+  /** Readings kept on and around the block, and places after readings in one cell became one. */
+  readings: z.number().int(),
+  places: z.number().int(),
+  /** Cells farther than this from every reading are empty. */
+  reachM: z.number(),
+  model: z.object({ shape: z.enum(['spherical', 'exponential', 'smooth']), nugget: z.number(), partialSill: z.number(), rangeM: z.number() }).nullable(),
+  bins: z.array(z.object({ pairs: z.number(), distanceM: z.number(), gamma: z.number() })),
+  standardError: z.number().nullable(),
+  setAside: z.array(z.object({ reason: z.enum(setAsideReasons), count: z.number().int() })),
+  /** Reasons that a person took back: their readings count again. */
+  taken: z.array(z.enum(setAsideReasons)),
+});
+export type LayerSurvey = z.infer<typeof layerSurvey>;
+
+/** Readings set aside, where they were taken; at most some thousands, evenly chosen. */
+export const asideReading = z.object({ lonLat: z.tuple([z.number(), z.number()]), reason: z.enum(setAsideReasons) });
+export type AsideReading = z.infer<typeof asideReading>;
+
+export const cleaningChange = z.object({ taken: z.array(z.enum(setAsideReasons)).max(setAsideReasons.length) });
+export type CleaningChange = z.infer<typeof cleaningChange>;
+
 export const layerOverride = z.object({ by: z.string(), reason: z.string(), at: z.string() });
 
 /** ready: no doubt; doubt: amber findings; blocked: red ones; overridden: red, and somebody answers for it; stale: made for an older outline. */
@@ -48,6 +73,8 @@ export const blockLayerView = z.object({
   findings: z.array(layerFinding),
   readiness,
   override: layerOverride.nullable(),
+  /** Null for layers that are not made of points. */
+  survey: layerSurvey.nullable(),
   classes: z.array(layerClass).nullable(),
   gridKey: z.string(),
   derivedFrom: id.nullable(),

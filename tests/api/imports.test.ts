@@ -80,7 +80,7 @@ async function cellsOf(layerId: string, blockId: string) {
 }
 
 async function layersOn(blockId: string) {
-  return (await agent.get(`${base()}/blocks/${blockId}/layers`)).body.items as { id: string; name: string; type: string; unit: string; coverage: number; readiness: string; findings: { code: string; severity: string; params: Record<string, number> }[]; statistics: { mean: number; min: number; max: number; n: number; histogram: { counts: number[] } }; classes: { value: number; name: string }[] | null; measuredOn: string | null; derivedFrom: string | null }[];
+  return (await agent.get(`${base()}/blocks/${blockId}/layers`)).body.items as { id: string; name: string; type: string; unit: string; coverage: number; readiness: string; findings: { code: string; severity: string; params: Record<string, number> }[]; statistics: { mean: number; min: number; max: number; n: number; histogram: { counts: number[] } }; classes: { value: number; name: string }[] | null; measuredOn: string | null; derivedFrom: string | null; survey: Record<string, unknown> | null }[];
 }
 
 describe('a vigour picture', () => {
@@ -260,9 +260,20 @@ describe('conductivity points', () => {
     const { layers } = (await agent.get(`${base()}/imports/${line.id}`)).body;
     const layer = (await layersOn(west.id)).find((each) => each.id === layers[0].id)!;
     expect(layer).toMatchObject({ type: 'conductivity', unit: 'mS/m', readiness: 'doubt' });
-    expect(layer.findings.map((finding) => finding.code).sort()).toEqual(['pointsSetAside.impossible', 'pointsSetAside.samePlace', 'steelTrellis']);
+    expect(layer.findings.map((finding) => finding.code).sort()).toEqual(['steelTrellis']);
     expect(layer.statistics.mean).toBeCloseTo(25, 0);
     expect(layer.statistics.min).toBeGreaterThan(19);
+    expect(layer.survey).toMatchObject({ method: 'kriging', setAside: [{ reason: 'impossible', count: 1 }, { reason: 'samePlace', count: 1 }], taken: [] });
+    const { items } = (await agent.get(`${base()}/layers/${layer.id}/aside?block=${west.id}`)).body;
+    expect(items.map((each: { reason: string }) => each.reason)).toEqual(['impossible', 'samePlace']);
+    expect(items[0].lonLat[0]).toBeCloseTo(lonLatAt(50, 31)[0]!, 6);
+    // What was set aside counts again when a person says so, and the surface is made anew.
+    const again = await agent.put(`${base()}/layers/${layer.id}/cleaning`, { taken: ['impossible'] });
+    expect(again.status).toBe(202);
+    await jobEnd(agent, base(), again.body.jobId);
+    const remade = (await layersOn(west.id)).find((each) => each.id === layer.id)!;
+    expect(remade.survey).toMatchObject({ setAside: [{ reason: 'samePlace', count: 1 }], taken: ['impossible'] });
+    expect(remade.statistics.min).toBeLessThan(layer.statistics.min!);
     expect(await layersOn(east.id)).not.toContainEqual(expect.objectContaining({ id: layer.id, coverage: 1 }));
   });
 });

@@ -57,6 +57,8 @@ const doors: Door[] = [
   door('patch', `/layers/${nobody}`, 'layers.import'),
   door('post', `/layers/${nobody}/override`, 'layers.override'),
   door('delete', `/layers/${nobody}`, 'layers.import'),
+  door('get', `/layers/${nobody}/aside?block=${nobody}`, 'estate.see', 'read'),
+  door('put', `/layers/${nobody}/cleaning`, 'layers.import'),
   door('get', '/measures', 'estate.see', 'read'),
   door('post', '/measures', 'plans.margins'),
   door('patch', `/measures/${nobody}`, 'plans.margins'),

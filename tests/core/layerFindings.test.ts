@@ -56,6 +56,6 @@ describe('points of a survey', () => {
     const { kept, setAside } = cleanPoints({ x: Float64Array.of(0, 0, 5, 9, 12), y: Float64Array.of(0, 0.01, 0, 0, 0), value: Float64Array.of(12, 13, -3, 14, NaN) }, { min: 0, max: 2000 });
     expect([...kept.value]).toEqual([12, 14]);
     expect([...kept.x]).toEqual([0, 9]);
-    expect(setAside).toEqual([{ reason: 'missing', count: 1 }, { reason: 'impossible', count: 1 }, { reason: 'samePlace', count: 1 }, { reason: 'spike', count: 0 }]);
+    expect(setAside).toEqual([{ reason: 'missing', count: 1 }, { reason: 'impossible', count: 1 }, { reason: 'outside', count: 0 }, { reason: 'samePlace', count: 1 }, { reason: 'speed', count: 0 }, { reason: 'spike', count: 0 }]);
   });
 });

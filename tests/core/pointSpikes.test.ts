@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { cleanPoints } from '../../shared/analysis/cleanPoints.ts';
+import { oddSpeeds } from '../../shared/analysis/pointSpeeds.ts';
 import { spikes } from '../../shared/analysis/pointSpikes.ts';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 
@@ -41,5 +42,60 @@ describe('spikes of a survey', () => {
     expect(count).toBeGreaterThanOrEqual(7); // every 97th of 600
     expect(count).toBeLessThanOrEqual(9);
     expect(kept.value.length).toBe(600 - count);
+  });
+});
+
+describe('the pace of a survey', () => {
+  /** Rows 6 m apart driven up and down with a reading a metre; at `stops` the sensor crawls. */
+  function drive(stops: readonly number[]) {
+    const [x, y]: [number[], number[]] = [[], []];
+    for (let line = 0; line < 10; line++) {
+      for (let step = 0; step < 60; step++) {
+        const crawl = stops.includes(x.length) ? 0.9 : 0;
+        x.push(line * 6);
+        y.push(line % 2 === 0 ? step - crawl : 59 - step + crawl);
+      }
+    }
+    return { x: Float64Array.from(x), y: Float64Array.from(y), value: new Float64Array(x.length).fill(20) };
+  }
+  const odd = (found: Uint8Array) => [...found.entries()].filter(([, is]) => is === 1).map(([point]) => point);
+
+  it('shows where the sensor crawled; the long way to the next row is no fault', () => {
+    expect(odd(oddSpeeds(drive([]), null))).toEqual([]);
+    expect(odd(oddSpeeds(drive([130, 250]), null))).toEqual([130, 250]);
+  });
+
+  it('shows a position that leapt away and back', () => {
+    const points = drive([]);
+    points.y[200] = 400;
+    expect(odd(oddSpeeds(points, null))).toEqual([200]);
+  });
+
+  it('is read from the file where it gives speeds, in any unit', () => {
+    const points = drive([]);
+    const speed = points.x.map((_, point) => (point === 7 ? 0 : point === 9 ? 40 : 6 + (point % 3)));
+    expect(odd(oddSpeeds(points, speed))).toEqual([7, 9]);
+    expect(odd(oddSpeeds(points, speed.map((each) => each / 3.6)))).toEqual([7, 9]);
+  });
+
+  it('is not judged where points do not follow each other', () => {
+    const { x, y, value } = drive([130]);
+    const order = [...x.keys()].sort((a, b) => ((a * 7919) % 600) - ((b * 7919) % 600));
+    const pick = (from: Float64Array) => Float64Array.from(order, (point) => from[point]!);
+    expect(odd(oddSpeeds({ x: pick(x), y: pick(y), value: pick(value) }, null))).toEqual([]);
+  });
+});
+
+describe('cleaning', () => {
+  const points = { x: Float64Array.of(0, 5, 9, 30), y: Float64Array.of(0, 0, 0, 0), value: Float64Array.of(12, -3, 14, 13) };
+  const isOutside = (x: number) => x > 20;
+
+  it('names the reason of every point and its place in the file', () => {
+    expect(cleanPoints(points, { min: 0, max: null, isOutside }).aside).toEqual([{ point: 1, reason: 'impossible' }, { point: 3, reason: 'outside' }]);
+  });
+
+  it('lets points count again whose reason was taken back, never those without a value', () => {
+    expect([...cleanPoints(points, { min: 0, max: null, isOutside, off: ['outside'] }).kept.value]).toEqual([12, 14, 13]);
+    expect(cleanPoints({ ...points, value: Float64Array.of(1, NaN, 2, 3) }, { min: 0, max: null, off: ['missing'] }).aside).toEqual([{ point: 1, reason: 'missing' }]);
   });
 });

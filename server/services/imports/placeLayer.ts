@@ -1,8 +1,6 @@
 import type { Transaction } from 'objection';
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { LayerTypeId } from '../../../shared/catalog/layerTypes.ts';
-import { groupBy } from '../../../shared/groupBy.ts';
-import { ImportProblem } from '../../importers/importProblem.ts';
 import { computeInJob } from '../../jobs/computeInJob.ts';
 import type { JobHandler } from '../../jobs/handlers.ts';
 import type { JobContext } from '../../jobs/runner.ts';
@@ -14,21 +12,23 @@ import { Layer } from '../../models/Layer.ts';
 import { keepRelief } from '../../models/Relief.ts';
 import { storable } from '../../models/storable.ts';
 import { StoredFile } from '../../models/StoredFile.ts';
-import type { PlacedCells, PlacedLayer } from '../../placing/placed.ts';
+import type { PlacedLayer } from '../../placing/placed.ts';
+import { blockLayer } from './blockLayerRow.ts';
+import { placeAllOn, placeLayerAgain } from './placeAgain.ts';
 import { problemNote } from './receive.ts';
 import { withSource } from './source.ts';
 import { targetBlocks } from './whereabouts.ts';
 
-/** Places a new layer on every block it covers, or all layers of the estate on a block whose grid is new. */
+/** Places a new layer on every block it covers, all layers of the estate on a block whose grid is new, or one layer again. */
 export const placeLayerJob: JobHandler = {
-  work: async (context) => (context.job.subjectType === 'block' ? placeAllOn(context) : placeImport(context)),
+  work: (context) => ({ import: placeImport, block: placeAllOn, layer: placeLayerAgain })[context.job.subjectType as 'import'](context),
   failed: async (job: Job, problem: string) => {
     if (job.subjectType !== 'import') return;
     await FileImport.query().where({ estateId: job.estateId, id: job.subjectId }).where({ state: 'ready' }).patch({ state: 'refused', problem: { code: 'fault', text: problem, params: {} } });
   },
 };
 
-async function placeImport(context: JobContext): Promise<{ layerIds: string[]; blocks: number }> {
+async function placeImport(context: JobContext): Promise<unknown> {
   const { estateId, subjectId, createdBy } = context.job;
   const record = await FileImport.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
   if (record.state === 'done') return placedBefore(record);
@@ -74,40 +74,6 @@ async function storeLayers(trx: Transaction, record: FileImport, placed: readonl
     await BlockLayer.query(trx).insert(layer.blocks.map((cells) => blockLayer(estateId, made.id, cells)));
   }
   return ids;
-}
-
-function blockLayer(estateId: string, layerId: string, { blockId, gridKey, cells, coverage, statistics, findings }: PlacedCells): Partial<BlockLayer> {
-  return { estateId, layerId, blockId, gridKey, cells: Buffer.from(encodeCells(cells)), coverage, statistics, findings: findings as BlockLayer['findings'] };
-}
-
-/** Each file again, on this block alone. Files that do not reach it leave it without their layers. */
-async function placeAllOn(context: JobContext): Promise<{ placed: number }> {
-  const { estateId, subjectId: blockId } = context.job;
-  const blocks = await targetBlocks(estateId, { blockId: blockId! });
-  if (blocks.length === 0) return { placed: 0 };
-  const layers = groupBy(await Layer.query().where({ estateId }).whereNull('retiredAt').whereNotNull('importId').orderBy('createdAt'), (layer) => layer.importId!);
-  const records = await FileImport.query().where({ estateId }).findByIds([...layers.keys()]);
-  let done = 0;
-  for (const record of records) {
-    await context.report('placing', done / records.length);
-    const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>({ report: async () => undefined }, 'placeFile', { source, blocks })).catch((error: unknown) => {
-      // A layer that lies elsewhere is none of this block's.
-      if (error instanceof ImportProblem) return [];
-      throw error;
-    });
-    await replaceOn(blockId!, layers.get(record.id)!, placed);
-    done += 1;
-  }
-  return { placed: done };
-}
-
-async function replaceOn(blockId: string, layers: readonly Layer[], placed: readonly PlacedLayer[]): Promise<void> {
-  await BlockLayer.transaction(async (trx) => {
-    const { estateId } = layers[0]!;
-    await BlockLayer.query(trx).where({ estateId, blockId }).whereIn('layerId', layers.map((layer) => layer.id)).delete();
-    const rows = layers.flatMap((layer) => (placed.find((each) => each.type === layer.type)?.blocks ?? []).map((cells) => blockLayer(estateId, layer.id, cells)));
-    if (rows.length > 0) await BlockLayer.query(trx).insert(rows);
-  });
 }
 
 function baseName(fileName: string): string {

@@ -11,7 +11,7 @@ import { Person } from '../../models/Person.ts';
 export async function listLayers(access: Access, blockId: string): Promise<BlockLayerView[]> {
   const { estateId } = access;
   const block = await Block.query().findOne({ estateId, id: blockId }).whereNull('retiredAt').select('id', 'gridKey').throwIfNotFound();
-  const onBlock = await BlockLayer.query().where({ estateId, blockId }).select('id', 'layerId', 'gridKey', 'coverage', 'statistics', 'findings', 'override');
+  const onBlock = await BlockLayer.query().where({ estateId, blockId }).select('id', 'layerId', 'gridKey', 'coverage', 'statistics', 'findings', 'override', BlockLayer.raw("survey - 'aside' as survey"));
   const layers = await Layer.query().where({ estateId }).whereNull('retiredAt').whereIn('id', onBlock.map((row) => row.layerId)).orderBy('createdAt', 'desc');
   const imports = await FileImport.query().where({ estateId }).whereIn('id', layers.flatMap((layer) => layer.importId ?? [])).select('id', 'fileId');
   const people = await Person.query().findByIds(layers.flatMap((layer) => layer.createdBy ?? [])).select('id', 'name');
@@ -30,6 +30,7 @@ export async function listLayers(access: Access, blockId: string): Promise<Block
       findings: here.findings,
       readiness: readinessOf(here, block.gridKey),
       override: here.override === null ? null : { by: here.override.by, reason: here.override.reason, at: here.override.at },
+      survey: here.survey,
       classes: layer.classes,
       gridKey: here.gridKey,
       derivedFrom: layer.derivedFrom,

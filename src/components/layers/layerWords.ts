@@ -1,5 +1,6 @@
-import type { LayerFinding, Readiness } from '../../../shared/contracts/layers.ts';
+import type { LayerFinding, LayerSurvey, Readiness } from '../../../shared/contracts/layers.ts';
 import type { Format } from '../../lib/format.ts';
+import type { ChartAxis } from '../base/chartTypes.ts';
 import type { ChipKind } from '../base/StateChip.vue';
 
 interface Words {
@@ -18,3 +19,18 @@ export function findingWords(finding: LayerFinding, { t, format }: Words): strin
 
 export const readinessChip: Record<Readiness, ChipKind> = { ready: 'done', doubt: 'asks', blocked: 'stop', overridden: 'asks', stale: 'plain' };
 export const severityChip: Record<LayerFinding['severity'], ChipKind> = { red: 'stop', amber: 'asks', note: 'plain' };
+
+/** Axes of a semivariogram from 0, with four steps each. */
+export function variogramAxes(bins: LayerSurvey['bins'], format: Format): { x: ChartAxis; y: ChartAxis } {
+  const farM = roundUp(bins.at(-1)?.distanceM ?? 1);
+  const high = roundUp(Math.max(...bins.map(({ gamma }) => gamma), 1e-9));
+  const steps = (top: number) => [0, 1, 2, 3, 4].map((step) => (top * step) / 4);
+  const decimals = Math.max(0, 1 - Math.floor(Math.log10(high / 4)));
+  return { x: { low: 0, high: farM, ticks: steps(farM), text: (value) => format.figure('length', value, 0) }, y: { low: 0, high, ticks: steps(high), text: (value) => format.number(value, decimals) } };
+}
+
+/** The next of 1, 2, 4, 8 times a power of ten that holds a value. */
+function roundUp(value: number): number {
+  const power = 10 ** Math.floor(Math.log10(value));
+  return power * [1, 2, 4, 8, 10].find((times) => value <= times * power)!;
+}

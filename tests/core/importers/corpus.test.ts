@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { understandFile, type Understood } from '../../../server/importers/formats.ts';
 import { ImportProblem } from '../../../server/importers/importProblem.ts';
 import { estateLonLat, type CorpusCase } from './corpus.ts';
+import { databaseCases } from './corpusDatabases.ts';
 import { pointCases } from './corpusPoints.ts';
 import { rasterCases } from './corpusRasters.ts';
 import { vectorCases } from './corpusVectors.ts';
@@ -58,10 +59,14 @@ describe('outlines, soil maps and archives of every kind and damage', () => {
   it.each(vectorCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
 });
 
+describe('databases of every kind and damage', () => {
+  it.each(databaseCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
+});
+
 describe('tables of points of every kind and damage', () => {
   it.each(pointCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
 });
 
 it('the corpus has at least 150 files', () => {
-  expect(rasterCases.length + vectorCases.length + pointCases.length).toBeGreaterThanOrEqual(150);
+  expect(rasterCases.length + vectorCases.length + databaseCases.length + pointCases.length).toBeGreaterThanOrEqual(150);
 });

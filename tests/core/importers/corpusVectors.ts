@@ -167,7 +167,6 @@ const xmlCases: CorpusCase[] = [
   gpxFile('a walk that does not come back', () => track(squareLonLat.slice(0, 4).map(([x, y], i) => [x + i * 0.01, y] as const)), accepted('open-track')),
   gpxFile('waypoints', () => text('<?xml version="1.0"?><gpx version="1.1" creator="test" xmlns="http://www.topografix.com/GPX/1/1"><wpt lat="44.7032" lon="3.0012"><name>post</name></wpt></gpx>'), accepted()),
   gpxFile('an empty GPX', () => text('<?xml version="1.0"?><gpx version="1.1" creator="test" xmlns="http://www.topografix.com/GPX/1/1"></gpx>'), refused('no-layer', /no tracks/)),
-  vector('soil.gpkg')('a GeoPackage', () => text('SQLite format 3\0rest'), refused('wrong-type', /GeoPackage/)),
   vector('plan.pdf')('a PDF', () => text('%PDF-1.7 x'), refused('wrong-type', /a PDF document/)),
 ];
 

@@ -1,4 +1,6 @@
-import { readFileSync } from 'node:fs';
+import { execFileSync } from 'node:child_process';
+import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
+import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import type { MultiPolygon, Polygon } from 'geojson';
 import { describe, expect, it } from 'vitest';
@@ -27,6 +29,32 @@ describe('a real shapefile', () => {
     expect(layer!.fields.find(({ name }) => name === 'tract')).toMatchObject({ kind: 'number', distinct: 5 });
   });
 });
+
+describe.skipIf(!hasOgr())('a real GeoPackage, written by OGR', () => {
+  it('has the same shapes and attributes as the shapefile it was made from', async () => {
+    const folder = mkdtempSync(join(tmpdir(), 'gpkg-'));
+    try {
+      const path = join(folder, 'tracts.gpkg');
+      execFileSync('ogr2ogr', ['-f', 'GPKG', path, `/vsizip/${tracts}`, '-t_srs', 'EPSG:31985', '-nln', 'tracts'], { stdio: 'ignore' });
+      const { layers, epsg } = await read(path, 'tracts.gpkg');
+      expect(epsg).toBe(31985);
+      const [original] = (await read(tracts)).layers;
+      expect(layers[0]!.fields.filter(({ name }) => name !== 'fid').map(({ name, kind, distinct }) => ({ name, kind, distinct }))).toEqual(original!.fields.map(({ name, kind, distinct }) => ({ name, kind, distinct })));
+      layers[0]!.featuresLonLat.features.forEach(({ geometry }, at) => expect(areaHa(geometry as Polygon)).toBeCloseTo(areaHa(original!.featuresLonLat.features[at]!.geometry as Polygon), 4));
+    } finally {
+      rmSync(folder, { recursive: true });
+    }
+  });
+});
+
+function hasOgr(): boolean {
+  try {
+    execFileSync('ogr2ogr', ['--version'], { stdio: 'ignore' });
+    return true;
+  } catch {
+    return false;
+  }
+}
 
 describe('attribute tables', () => {
   const fields = [{ name: 'NAME', type: 'C', width: 12 }, { name: 'AWC', type: 'N', width: 8 }, { name: 'SEEN', type: 'D', width: 8 }, { name: 'WET', type: 'L', width: 1 }] as const;

@@ -38,6 +38,7 @@ import { sessionRoutes } from './routes/session.ts';
 import { todayRoutes } from './routes/today.ts';
 import { zoningRoutes } from './routes/zonings.ts';
 import { sessionMs } from './services/account/openSessions.ts';
+import { receiveInPieces } from './storage/resumable.ts';
 import { receiveFiles } from './storage/uploads.ts';
 
 /** A phone sends some 300 KB; a camera's original fits too. */
@@ -104,7 +105,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
-  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
+  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
   router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes());
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
   router.use(harvestRoutes({ publicUrl }));

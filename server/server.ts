@@ -11,9 +11,11 @@ import { startRunner } from './jobs/runner.ts';
 import { log, setLogLevel } from './log.ts';
 import { makeTransport } from './mail/transport.ts';
 import { openFileStore } from './storage/fileStore.ts';
+import { dropForgotten } from './storage/resumable.ts';
 import { closeComputePool, openComputePool } from './workers/computePool.ts';
 
 const mailEveryMs = 5000;
+const sweepEveryMs = 3_600_000;
 
 async function main(): Promise<void> {
   const config = readConfig();
@@ -25,6 +27,9 @@ async function main(): Promise<void> {
   const runner = await startRunner(config.databaseUrl);
   const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });
   const mailTimer = setInterval(() => void mail.flush().catch((error: unknown) => log.error('mail', error)), mailEveryMs);
+  const sweep = () => void dropForgotten(new Date()).catch((error: unknown) => log.error('unfinished uploads', error));
+  sweep();
+  const sweepTimer = setInterval(sweep, sweepEveryMs);
   const sessionPool = new pg.Pool({ connectionString: config.databaseUrl, max: 4 });
   const isReady = () => knex.raw('select 1').then(() => true, () => false);
   const server = createServer(makeApp(config, { isReady, sessionPool, clientFolder: clientFolder() }));
@@ -33,6 +38,7 @@ async function main(): Promise<void> {
 
   const stop = async () => {
     clearInterval(mailTimer);
+    clearInterval(sweepTimer);
     server.closeAllConnections();
     server.close();
     await runner.stop().catch(() => undefined);

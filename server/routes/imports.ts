@@ -1,16 +1,17 @@
-import { Router, type RequestHandler } from 'express';
+import { Router, type Request, type RequestHandler } from 'express';
 import { pipeline } from 'node:stream/promises';
-import { importPatch, outlinesTaken } from '../../shared/contracts/imports.ts';
+import { arrivedUploads, importPatch, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { answerImport } from '../services/imports/answer.ts';
 import { dismissImport, openOriginal } from '../services/imports/keep.ts';
 import { takeOutlines } from '../services/imports/outlines.ts';
 import { receiveFiles } from '../services/imports/receive.ts';
 import { listImports, viewImport } from '../services/imports/view.ts';
+import { takePieces, type PiecesReceiver } from '../storage/resumable.ts';
 import { uploadsOf } from '../storage/uploads.ts';
 
 /** Files: received, asked about, taken over, and given back byte for byte. */
-export function importRoutes(options: { receive: RequestHandler }): Router {
+export function importRoutes(options: { receive: RequestHandler; receiveInPieces: PiecesReceiver }): Router {
   const router = Router({ mergeParams: true });
 
   router.get('/imports', allow('layers.import', 'read'), async (request, response) => {
@@ -20,6 +21,13 @@ export function importRoutes(options: { receive: RequestHandler }): Router {
 
   router.post('/imports', allow('layers.import'), options.receive, async (request, response) => {
     const items = await receiveFiles(accessOf(request), uploadsOf(request.files));
+    response.status(201).json({ items, total: items.length });
+  });
+
+  router.use('/imports/pieces', allow('layers.import'), (request, response) => options.receiveInPieces(request, response, ownerOf(request)));
+
+  router.post('/imports/arrived', allow('layers.import'), async (request, response) => {
+    const items = await receiveFiles(accessOf(request), await takePieces(ownerOf(request), arrivedUploads.parse(request.body).uploads));
     response.status(201).json({ items, total: items.length });
   });
 
@@ -48,4 +56,10 @@ export function importRoutes(options: { receive: RequestHandler }): Router {
   });
 
   return router;
+}
+
+/** An unfinished upload belongs to one person in one estate. */
+function ownerOf(request: Request): string {
+  const { estateId, personId } = accessOf(request);
+  return `${estateId}.${personId}`;
 }

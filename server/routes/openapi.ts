@@ -2,7 +2,7 @@ import { z } from 'zod';
 import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, estateFacts, newEstate } from '../../shared/contracts/estate.ts';
-import { importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
+import { arrivedUploads, importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
 import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
@@ -68,6 +68,8 @@ const operations: Operation[] = [
   { method: 'delete', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Take a layer out of use' },
   { method: 'get', path: '/api/estates/{estateId}/imports', summary: 'Lines of the import desk', answer: z.object({ items: z.array(importView), total: z.int() }) },
   { method: 'post', path: '/api/estates/{estateId}/imports', summary: 'Send files in the multipart field "files"; one line a file', answer: z.object({ items: z.array(importView), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/imports/pieces', summary: 'Begin to send a large file in pieces, by the tus protocol 1.0; go on with PATCH at the Location' },
+  { method: 'post', path: '/api/estates/{estateId}/imports/arrived', summary: 'Take in files that were sent in pieces; one line a file', body: arrivedUploads, answer: z.object({ items: z.array(importView), total: z.int() }) },
   { method: 'get', path: '/api/estates/{estateId}/imports/{importId}', summary: 'What was understood of a file, and what is asked', answer: importView },
   { method: 'patch', path: '/api/estates/{estateId}/imports/{importId}', summary: 'Answer questions; when none is left the layer is placed', body: importPatch, answer: importView },
   { method: 'post', path: '/api/estates/{estateId}/imports/{importId}/blocks', summary: 'Make blocks of outlines in a file, all or none', body: outlinesTaken, answer: outlinesMade },

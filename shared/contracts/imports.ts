@@ -59,6 +59,9 @@ export type ImportQuestionCode = keyof ImportAnswers;
 
 export const importPatch = z.object({ answers: importAnswers });
 
+/** Files that were sent in pieces and have arrived whole; those that belong together are named together. */
+export const arrivedUploads = z.object({ uploads: z.array(z.string().regex(/^[0-9a-f.-]{110}$/, 'This is no upload.')).min(1).max(40) });
+
 export const questionChoice = z.object({
   value: z.union([z.string(), z.number(), z.boolean(), z.null()]),
   /** As the file or the reference system names it; null when the screen has words for the value. */

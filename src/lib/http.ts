@@ -31,6 +31,11 @@ export function setCsrfToken(token: string): void {
   csrfToken = token;
 }
 
+/** The token of this session, for requests that do not go through here. */
+export function currentCsrfToken(): string {
+  return csrfToken;
+}
+
 /** Called when the server says that nobody is signed in any more. */
 export function whenSignedOut(handler: () => void): void {
   onSignedOut = handler;

@@ -4,6 +4,7 @@ import type { ImportAnswers, ImportView, OutlinesTaken } from '../../shared/cont
 import { fileGroups } from '../lib/fileGroups.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
+import { inPiecesFromBytes, resumableUpload, type ResumableUpload } from '../lib/resumableUpload.ts';
 
 /** A file on its way to the server. */
 export interface Sending {
@@ -13,6 +14,11 @@ export interface Sending {
   /** Share sent, 0…1; then the server reads. */
   readonly share: number;
   readonly problem: HttpProblem | null;
+  /** paused by a person; waiting for the line to come back. */
+  readonly halt: 'paused' | 'waiting' | null;
+  /** Only what goes in pieces can rest and go on. */
+  readonly pause: (() => void) | null;
+  readonly resume: () => void;
   readonly stop: () => void;
 }
 
@@ -62,12 +68,13 @@ export const useImportsStore = defineStore('imports', () => {
     const [id, abort] = [++last, new AbortController()];
     const bytes = group.reduce((sum, file) => sum + file.size, 0);
     const stop = () => (abort.abort(), forget(id));
-    sending.value = [...sending.value, { id, fileName: group[0]!.name, bytes, share: 0, problem: null, stop }];
+    sending.value = [...sending.value, { id, fileName: group[0]!.name, bytes, share: 0, problem: null, halt: null, pause: null, resume: () => undefined, stop }];
     return { id, group, abort };
   }
 
   async function sendGroup(estateId: string, { id, group, abort }: Waiting): Promise<ImportView[]> {
     if (abort.signal.aborted) return [];
+    if (group.some((file) => file.size >= inPiecesFromBytes)) return sendInPieces(estateId, { id, group, abort });
     const form = new FormData();
     for (const file of group) form.append('files', file, file.name);
     try {
@@ -77,6 +84,38 @@ export const useImportsStore = defineStore('imports', () => {
     } catch (error) {
       return refused(id, error);
     }
+  }
+
+  /** Large files, one after the other in pieces; when all of a group have arrived they are taken in together. */
+  async function sendInPieces(estateId: string, { id, group, abort }: Waiting): Promise<ImportView[]> {
+    const total = group.reduce((sum, file) => sum + file.size, 0);
+    const uploads: string[] = [];
+    let before = 0;
+    try {
+      for (const file of group) {
+        const upload = resumableUpload(file, `${base(estateId)}/pieces`, {
+          onProgress: (sent) => patchSending(id, { share: (before + sent) / total }),
+          onWaiting: (isWaiting) => patchSending(id, { halt: isWaiting ? 'waiting' : null }),
+        });
+        patchSending(id, controlsOf(id, upload));
+        abort.signal.addEventListener('abort', upload.stop, { once: true });
+        uploads.push(await upload.done);
+        before += file.size;
+      }
+      patchSending(id, { share: 1, halt: null, pause: null });
+      const { items } = await http.post<{ items: ImportView[] }>(`${base(estateId)}/arrived`, { uploads });
+      forget(id);
+      return items.map(keep);
+    } catch (error) {
+      return refused(id, error);
+    }
+  }
+
+  function controlsOf(id: number, upload: ResumableUpload): Partial<Sending> {
+    return {
+      pause: () => (upload.pause(), patchSending(id, { halt: 'paused' })),
+      resume: () => (patchSending(id, { halt: null }), upload.resume()),
+    };
   }
 
   function refused(id: number, error: unknown): ImportView[] {

@@ -268,11 +268,11 @@ describe('conductivity points', () => {
     expect(items.map((each: { reason: string }) => each.reason)).toEqual(['impossible', 'samePlace']);
     expect(items[0].lonLat[0]).toBeCloseTo(lonLatAt(50, 31)[0]!, 6);
     // What was set aside counts again when a person says so, and the surface is made anew.
-    const again = await agent.put(`${base()}/layers/${layer.id}/cleaning`, { taken: ['impossible'] });
+    const again = await agent.put(`${base()}/layers/${layer.id}/cleaning`, { taken: ['impossible', 'spike'] });
     expect(again.status).toBe(202);
     await jobEnd(agent, base(), again.body.jobId);
     const remade = (await layersOn(west.id)).find((each) => each.id === layer.id)!;
-    expect(remade.survey).toMatchObject({ setAside: [{ reason: 'samePlace', count: 1 }], taken: ['impossible'] });
+    expect(remade.survey).toMatchObject({ setAside: [{ reason: 'samePlace', count: 1 }], taken: ['impossible', 'spike'] });
     expect(remade.statistics.min).toBeLessThan(layer.statistics.min!);
     expect(await layersOn(east.id)).not.toContainEqual(expect.objectContaining({ id: layer.id, coverage: 1 }));
   });

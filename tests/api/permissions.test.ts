@@ -59,6 +59,8 @@ const doors: Door[] = [
   door('delete', `/layers/${nobody}`, 'layers.import'),
   door('get', `/layers/${nobody}/aside?block=${nobody}`, 'estate.see', 'read'),
   door('put', `/layers/${nobody}/cleaning`, 'layers.import'),
+  door('post', '/imports/pieces', 'layers.import'),
+  door('post', '/imports/arrived', 'layers.import'),
   door('get', '/measures', 'estate.see', 'read'),
   door('post', '/measures', 'plans.margins'),
   door('patch', `/measures/${nobody}`, 'plans.margins'),

@@ -29,6 +29,8 @@ export interface TestApp {
   server: Express;
   knex: Knex;
   config: Config;
+  /** For tests that need a real line instead of supertest's. */
+  application: ReturnType<typeof makeApp>;
   /** A browser with its own cookies; every write carries the token of its session. */
   browser: () => Promise<Agent & { signIn: (email: string, password?: string) => Promise<supertest.Response> }>;
   addPerson: (estateId: string, role: Role, name?: string) => Promise<{ id: string; email: string }>;
@@ -84,6 +86,7 @@ export async function startTestApp(env: Record<string, string> = {}): Promise<Te
     server: app,
     knex,
     config,
+    application: app,
     browser,
     addPerson,
     addEstate,

@@ -24,6 +24,7 @@ import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { harvestRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
+import { labRoutes } from './routes/lab.ts';
 import { layerRoutes } from './routes/layers.ts';
 import { lotRoutes } from './routes/lots.ts';
 import { measureRoutes } from './routes/measures.ts';
@@ -43,6 +44,8 @@ import { receiveFiles } from './storage/uploads.ts';
 
 /** A phone sends some 300 KB; a camera's original fits too. */
 const photoLimitBytes = 15 * 2 ** 20;
+/** The reader of laboratories' files takes no more, so the upload need not either. */
+const labFileBytes = 8_000_000;
 
 export interface AppParts {
   isReady: () => Promise<boolean>;
@@ -106,7 +109,7 @@ function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
-  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes());
+  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }));
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
   router.use(harvestRoutes({ publicUrl }));
   router.use(todayRoutes(), searchRoutes());

@@ -51,7 +51,7 @@ export async function loadBagContext(trx: Transaction, access: Access, bags: rea
 }
 
 /** The bags that hold these labels: a void label is nobody's, and of two bags with one label the first holds it. */
-export function holdersOf(trx: Transaction | undefined, estateId: string, codes: readonly string[]): Promise<Bag[]> {
+export async function holdersOf(trx: Transaction | undefined, estateId: string, codes: readonly string[]): Promise<Bag[]> {
   return Bag.query(trx).where({ estateId }).whereIn('code', [...new Set(codes)]).whereNull('clashesWith').whereNot({ state: 'void' });
 }
 

@@ -1,0 +1,68 @@
+import { randomUUID } from 'node:crypto';
+import type { z } from 'zod';
+import type { LabFileView, labFileStore } from '../../../shared/contracts/lab.ts';
+import { isRemembered, type LabEntry } from '../../../shared/lab/file/labFile.ts';
+import type { Access } from '../../access/access.ts';
+import { Clash, Unusable } from '../../errors.ts';
+import { writeAudit } from '../../models/AuditEntry.ts';
+import { LabFile } from '../../models/LabFile.ts';
+import { LabMapping } from '../../models/LabMapping.ts';
+import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Reading } from '../../models/Reading.ts';
+import { holdersOf } from '../bags/bagContext.ts';
+import { seasonOfBag } from '../bags/labels.ts';
+import { openFile, read, viewLabFile } from './labFiles.ts';
+
+/**
+ * Stores the results of a file as provisional, all or none, and remembers how this laboratory's files are read. Refused
+ * while a question is open; a second press finds the file stored and changes nothing.
+ */
+export async function storeLabFile(access: Access, fileId: string, input: z.infer<typeof labFileStore>, now: Date): Promise<LabFileView> {
+  const { estateId, personId } = access;
+  const record = await openFile(access, fileId);
+  const { understood } = await read(access, record, { answers: record.answers, now });
+  const open = understood.questions.filter(({ answer }) => answer === null);
+  if (open.length > 0) throw new Clash('questionsOpen', `${open.length === 1 ? 'A question' : `${open.length} questions`} about ${record.fileName} ${open.length === 1 ? 'is' : 'are'} still open. Nothing is stored before.`);
+  if (understood.entries.length === 0) throw new Unusable('noResults', `${record.fileName} gives no result for a bag of this estate. Put it aside, or send the right file.`);
+  await LabFile.transaction(async (trx) => {
+    const locked = await LabFile.query(trx).findOne({ estateId, id: fileId }).forUpdate().throwIfNotFound();
+    if (locked.state !== 'asks') throw new Clash('stored', `The results of ${record.fileName} are stored already.`);
+    await Reading.query(trx).insert(await rowsOf(access, understood.entries, { trx, record, input, now, replace: record.answers.again === 'replace' }));
+    const answers = Object.fromEntries(understood.questions.flatMap(({ key, answer }) => (answer !== null && isRemembered(key) ? [[key, answer]] : [])));
+    await LabMapping.query(trx).insert({ estateId, labName: input.labName, mapping: { signature: understood.signature, answers }, updatedAt: now }).onConflict(['estateId', 'labName']).merge(['mapping', 'updatedAt']);
+    await LabFile.query(trx).where({ estateId, id: fileId }).patch({ state: 'stored', labName: input.labName, storedBy: personId, storedAt: now, storedCount: understood.entries.length });
+    await writeAudit(trx, access, { action: 'lab.storeFile', subjectType: 'labFile', subjectId: fileId, subjectName: record.fileName, after: { labName: input.labName, results: understood.entries.length, answers: record.answers } });
+  });
+  return viewLabFile(access, fileId, now);
+}
+
+interface Storing {
+  trx: NonNullable<Parameters<typeof holdersOf>[0]>;
+  record: LabFile;
+  input: z.infer<typeof labFileStore>;
+  now: Date;
+  replace: boolean;
+}
+
+async function rowsOf(access: Access, entries: readonly LabEntry[], { trx, record, input, now, replace }: Storing): Promise<Partial<Reading>[]> {
+  const { estateId, personId } = access;
+  const bags = await holdersOf(trx, estateId, entries.map(({ code }) => code));
+  const seasons = new Map<string, string>();
+  for (const bag of bags) seasons.set(bag.id, await seasonOfBag(trx, estateId, bag));
+  const measures = await MeasureRecord.query(trx).where({ estateId });
+  const before = replace ? await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bags.map(({ id }) => id)).whereNotExists(Reading.query(trx).alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId')) : [];
+  const replaced = new Set<string>();
+  return entries.map((entry) => {
+    const bag = bags.find(({ code }) => code === entry.code);
+    if (!bag) throw new Clash('bagGone', `The bag ${entry.code} changed its label meanwhile. Look at the file again.`);
+    const former = before.find((reading) => reading.bagId === bag.id && reading.measureCode === entry.measure && !replaced.has(reading.id));
+    if (former) replaced.add(former.id);
+    return {
+      id: randomUUID(), estateId, seasonId: seasons.get(bag.id)!, blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
+      measureCode: entry.measure, value: entry.value, unit: measures.find(({ code }) => code === entry.measure)!.unit, valueTyped: entry.typed, unitTyped: entry.unitTyped,
+      samples: Math.max(1, bag.vines.length), takenAt: bag.closedAt ?? bag.receivedAt ?? now, receivedAt: now, personId, source: 'lab' as const, state: 'provisional' as const, stateBy: personId, stateAt: now,
+      supersedes: former?.id ?? null, instrument: input.instrument, method: input.method, analysedOn: entry.analysedOn, labFileId: record.id,
+      flags: [...(entry.below ? ['belowDetection'] : []), ...(entry.odd ? ['odd'] : []), ...(bag.facts.wet === true ? ['wetFruit'] : []), ...(entry.corrected ? ['temperature'] : [])],
+    };
+  });
+}

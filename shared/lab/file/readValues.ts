@@ -1,0 +1,103 @@
+import { correctRefractometer } from '../../cellar/temperature.ts';
+import { markProved, readFigure, type DecimalMark } from '../figure.ts';
+import { labUnit } from '../units.ts';
+import { cellText } from './cells.ts';
+import type { LooseValue } from './columns.ts';
+import type { LabEntry, LabMeasure, RawCell } from './labFile.ts';
+import { inOwnUnit, isPlausible, isUsual } from './plausible.ts';
+import type { Asking } from './questions.ts';
+
+interface Reading {
+  readonly measures: readonly LabMeasure[];
+  readonly labels: ReadonlyMap<number, string>;
+  readonly dates: ReadonlyMap<number, string>;
+  readonly temperatureColumn: number | null;
+}
+
+/** Turns cells into results in the measures' own units, and says in words how the first of each column was read. */
+export function readValues(values: readonly LooseValue[], reading: Reading, asking: Asking): LabEntry[] {
+  const mark = decimalMark(values, reading.measures, asking);
+  const compensates = reading.temperatureColumn === null || !values.some(({ measure, unit }) => measure === 'brix' && unit === 'brix') ? 'none' : asking.ask('compensates', { code: 'compensates', choices: ['yes', 'no'] });
+  const entries: LabEntry[] = [];
+  for (const value of values) {
+    const code = reading.labels.get(value.line);
+    const figure = code === undefined ? null : figureOf(value, { mark, reading, asking });
+    if (code === undefined || figure === null) continue;
+    const measure = reading.measures.find((each) => each.code === value.measure)!;
+    let own = inOwnUnit(value.unit, figure.value);
+    const temperature = temperatureOf(value, reading.temperatureColumn, mark);
+    let corrected = false;
+    if (compensates === 'no' && value.unit === 'brix' && temperature !== null) {
+      const answer = correctRefractometer({ brix: own, temperatureC: temperature, compensates: false });
+      if (answer.kind === 'corrected') {
+        asking.say('corrected', { from: own, to: Number(answer.middle.toFixed(2)), low: Number(answer.low.toFixed(2)), high: Number(answer.high.toFixed(2)), temperature });
+        own = answer.middle;
+        corrected = true;
+      }
+    }
+    if (Number.isNaN(own) || !isPlausible(measure, value.unit, figure.value)) {
+      const answer = asking.ask(`cell:${value.line}:${value.title}`, { code: 'cellOdd', params: { line: value.line, title: value.title, text: cellText(value.cell) }, choices: Number.isNaN(own) ? ['leaveOut'] : ['keep', 'leaveOut'] });
+      if (answer !== 'keep') continue;
+    }
+    const unitTyped = labUnit(value.unit)?.shown ?? measure.unit;
+    sayOnce(value, { shown: cellText(value.cell), read: Number(own.toFixed(measure.decimals + 1)), unit: measure.unit, unitTyped, below: figure.below }, asking);
+    entries.push({ line: value.line, code, measure: measure.code, value: Number(own.toFixed(6)), below: figure.below, typed: cellText(value.cell).slice(0, 40), unitTyped, analysedOn: reading.dates.get(value.line) ?? null, odd: !isUsual(measure, own), corrected });
+  }
+  return entries;
+}
+
+/** The decimal mark that the clear cells prove; asked only when ambiguous ones are left that could be either. */
+function decimalMark(values: readonly LooseValue[], measures: readonly LabMeasure[], asking: Asking): DecimalMark | null {
+  const texts = values.filter(({ cell }) => typeof cell === 'string');
+  const proofs = new Set(texts.map(({ cell }) => markProved(cellText(cell))).filter((mark) => mark !== null));
+  if (proofs.size === 2) asking.say('mixedMarks');
+  const ambiguous = texts.filter(({ cell }) => readFigure(cellText(cell), null).kind === 'ambiguous');
+  const open = ambiguous.filter((value) => onlyPossible(value, measures) === null);
+  if (proofs.size === 1 && (ambiguous.length === 0 || open.length === 0 || [...proofs][0] === markIn(open[0]!))) return [...proofs][0]!;
+  if (open.length === 0) return proofs.size === 1 ? [...proofs][0]! : null;
+  const answer = asking.ask('decimal', { code: 'decimal', params: { example: cellText(open[0]!.cell), title: open[0]!.title }, choices: [',', '.'] });
+  return answer as DecimalMark | null;
+}
+
+const markIn = ({ cell }: LooseValue) => cellText(cell).replace(/[^.,]/g, '').at(-1) as DecimalMark;
+
+/** The one reading of an ambiguous cell that its measure allows; null when both or none are possible. */
+function onlyPossible({ cell, measure, unit }: LooseValue, measures: readonly LabMeasure[]): number | null {
+  const figure = readFigure(cellText(cell), null);
+  if (figure.kind !== 'ambiguous') return null;
+  const possible = [figure.asDecimal, figure.asThousands].filter((value) => isPlausible(measures.find(({ code }) => code === measure)!, unit, value));
+  // A gravity means the same with and without its mark.
+  const own = new Set(possible.map((value) => inOwnUnit(unit, value).toFixed(6)));
+  return own.size === 1 ? possible[0]! : null;
+}
+
+function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalMark | null; reading: Reading; asking: Asking }): { value: number; below: boolean } | null {
+  const { cell, line, title } = value;
+  if (typeof cell === 'number') return { value: cell, below: false };
+  if (typeof cell === 'object' && cell !== null) {
+    asking.ask(`cell:${line}:${title}`, { code: 'cellDate', params: { line, title, text: cell.date }, choices: ['leaveOut'] });
+    return null;
+  }
+  const text = cellText(cell);
+  const possible = onlyPossible(value, reading.measures);
+  if (possible !== null) return { value: possible, below: /^[<≤]/.test(text) };
+  const figure = readFigure(text, mark);
+  if (figure.kind === 'number') return figure;
+  // Until the mark is told the question about it stands; nothing more is asked of the cell.
+  if (figure.kind === 'none') asking.say('noResult', { word: figure.word });
+  if (figure.kind === 'unreadable') asking.ask(`cell:${line}:${title}`, { code: 'cellUnread', params: { line, title, text }, choices: ['leaveOut'] });
+  return null;
+}
+
+function temperatureOf({ rowCells }: LooseValue, column: number | null, mark: DecimalMark | null): number | null {
+  const cell: RawCell = column === null ? null : (rowCells[column] ?? null);
+  const figure = readFigure(cellText(cell), mark);
+  return figure.kind === 'number' && figure.value > -5 && figure.value < 60 ? figure.value : null;
+}
+
+function sayOnce({ title, measure }: LooseValue, read: { shown: string; read: number; unit: string; unitTyped: string; below: boolean }, asking: Asking): void {
+  if (asking.words.some(({ code, params }) => code.startsWith('read') && params.title === title)) return;
+  const { shown, unit, unitTyped } = read;
+  const code = read.below ? 'readBelow' : unit === unitTyped ? 'read' : 'readConverted';
+  asking.say(code, { title, measure, shown, value: read.read, unit: unit === 'pH' ? '' : unit, from: unitTyped });
+}

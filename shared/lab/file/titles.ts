@@ -1,0 +1,60 @@
+import { plainText } from './cells.ts';
+import type { LabMeasure } from './labFile.ts';
+
+/** What a column holds by its title. `unit: null` of a measure with several units means that the title does not say. */
+export type ColumnRole =
+  | { readonly kind: 'measure'; readonly measure: string; readonly unit: string | null }
+  | { readonly kind: 'code' | 'date' | 'temperature' | 'ignored' | 'unknown' | 'unit' | 'value' };
+
+interface TitleRow {
+  readonly pattern: RegExp;
+  readonly role: (title: string) => ColumnRole;
+}
+
+const ignored: ColumnRole = { kind: 'ignored' };
+const of = (measure: string, unit: string | null): ColumnRole => ({ kind: 'measure', measure, unit });
+
+/**
+ * Words of five languages, in the order of trying: what looks alike but is not wanted comes first. Titles are compared
+ * without accents, in small letters.
+ */
+const rows: readonly TitleRow[] = [
+  { pattern: /volat|\b[av]v\b|\bva\b|lacti|latti|acetic|gluconi|citri|potass|sulfit|\bso2\b|folin|\bipt\b|antho|antoc|tannin|colou?r|coul|turbid/, role: () => ignored },
+  { pattern: /alcoh|alcool|\btav|\bavp\b|% ?vol|grado prob|degre prob|gradazione/, role: () => ignored },
+  { pattern: /comment|remark|observ|note|nota|osserv|obs\b/, role: () => ignored },
+  { pattern: /brix|°bx|\bbx\b/, role: () => of('brix', 'brix') },
+  { pattern: /baume|^be$|°be|\bbe\b/, role: () => of('brix', 'baume') },
+  { pattern: /oechsle|ochsle|°oe|\boe\b/, role: () => of('brix', 'oechsle') },
+  { pattern: /\bsg\b|s\.g\.|\bd20|densi|dichte|masse vol|massa vol|peso espec|peso spec|specific grav|gravity/, role: () => of('brix', 'gravity') },
+  { pattern: /sugar|sucre|azucar|zuccher|acucar|zucker|\bsst\b|\btss\b|glucos|fructos|soluble sol|solidos|solidi sol/, role: () => of('brix', null) },
+  { pattern: /mali[ckqe]|malico|apfels/, role: (title) => of('malic', /mg ?\/? ?l/.test(title) ? 'malicMgPerL' : 'malicGPerL') },
+  { pattern: /\byan\b|assimil|asimil|nitrogen|azote|azoto|nitrogeno|\bnfa\b|\bapa\b|\bnaf\b/, role: (title) => of('yan', /(^|[^m])g ?\/ ?l/.test(title) ? 'gNPerL' : 'mgNPerL') },
+  { pattern: /\bph\b/, role: () => of('ph', null) },
+  { pattern: /sulph|sulf|solfor|h2so4/, role: () => of('ta', 'sulphuricGPerL') },
+  { pattern: /m(illi)?eq/, role: () => of('ta', 'meqPerL') },
+  { pattern: /mmol/, role: () => of('ta', 'mmolPerL') },
+  { pattern: /tartar|tartri|weins|h2t|c4h6o6/, role: () => of('ta', 'tartaricGPerL') },
+  { pattern: /acid|acidez|saure|\bta\b|\bat\b|\batt\b|\bact\b/, role: () => of('ta', null) },
+  { pattern: /(berr|bai[ea]|acin|bago|beeren).*(weight|poids|peso|mass|gewicht)|(weight|poids|peso|mass).*(berr|bai[ea]|acin|bago)/, role: (title) => of('berryWeight', /100/.test(title) ? 'gPer100Berries' : 'gPerBerry') },
+  { pattern: /temp|^t ?°|°c\b/, role: () => ({ kind: 'temperature' }) },
+  { pattern: /\bdate|fecha|\bdata\b|datum|\bdia\b|\bjour\b/, role: () => ({ kind: 'date' }) },
+  { pattern: /label|etiq|etich|bag\b|sample|echant|muestra|campion|amostra|probe|code|codigo|codice|\bref|\bid\b|\bno\b|\bn°/, role: () => ({ kind: 'code' }) },
+  { pattern: /^(unit|unite|unidad|unita|unidade|einheit)s?$/, role: () => ({ kind: 'unit' }) },
+  { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert)s?e?$/, role: () => ({ kind: 'value' }) },
+];
+
+/** Example: "Acidité totale (g/L H2SO4)" → titratable acidity as sulphuric; "Acidez total" → titratable acidity, scale not told. */
+export function roleOfTitle(title: string, measures: readonly LabMeasure[]): ColumnRole {
+  const plain = plainText(title);
+  if (plain === '') return { kind: 'unknown' };
+  const own = measures.find(({ name }) => name !== '' && plain.includes(plainText(name)));
+  if (own) return of(own.code, null);
+  const found = rows.find(({ pattern }) => pattern.test(plain))?.role(plain) ?? { kind: 'unknown' };
+  return found.kind === 'measure' && !measures.some(({ code }) => code === found.measure) ? ignored : found;
+}
+
+/** Unit words that stand alone, in a row of units or a column of units. */
+export function unitOfWord(word: string, measure: string): string | null {
+  const role = roleOfTitle(word, [{ code: measure, name: '', unit: '', decimals: 0, minimum: 0, maximum: 0 }]);
+  return role.kind === 'measure' && role.measure === measure ? role.unit : null;
+}

@@ -21,6 +21,7 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   blockEdit: () => import('../views/blocks/BlockEditView.vue'),
   layer: () => import('../views/blocks/LayerCheckView.vue'),
   imports: () => import('../views/imports/ImportDeskView.vue'),
+  lab: () => import('../views/lab/LabView.vue'),
   ripeness: () => import('../views/ripeness/RipenessView.vue'),
   blockRipeness: () => import('../views/ripeness/RipenessView.vue'),
   lots: () => import('../views/lots/LotsView.vue'),

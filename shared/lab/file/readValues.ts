@@ -55,8 +55,8 @@ function decimalMark(values: readonly LooseValue[], measures: readonly LabMeasur
   const open = ambiguous.filter((value) => onlyPossible(value, measures) === null);
   if (proofs.size === 1 && (ambiguous.length === 0 || open.length === 0 || [...proofs][0] === markIn(open[0]!))) return [...proofs][0]!;
   if (open.length === 0) return proofs.size === 1 ? [...proofs][0]! : null;
-  const answer = asking.ask('decimal', { code: 'decimal', params: { example: cellText(open[0]!.cell), title: open[0]!.title }, choices: [',', '.'] });
-  return answer as DecimalMark | null;
+  const answer = asking.ask('decimal', { code: 'decimal', params: { example: cellText(open[0]!.cell), title: open[0]!.title }, choices: ['comma', 'point'] });
+  return answer === null ? null : answer === 'comma' ? ',' : '.';
 }
 
 const markIn = ({ cell }: LooseValue) => cellText(cell).replace(/[^.,]/g, '').at(-1) as DecimalMark;

@@ -32,13 +32,15 @@ export function mendTitles(table: LabTable, measures: readonly LabMeasure[], ask
   const [first] = columns;
   const row = table.rows[0]!.cells;
   const found = cellText(row[first!.column]) || '–';
-  const answer = asking.ask('shift', { code: 'shift', params: { title: first!.title, found, wanted: cellText(row[first!.column + by]) }, choices: [String(by), '0'], suggestion: String(by) });
-  if (answer === '0') return table;
+  const answer = asking.ask('shift', { code: 'shift', params: { title: first!.title, found, wanted: cellText(row[first!.column + by]) }, choices: [stepWord(by), 'stay'], suggestion: stepWord(by) });
+  if (answer === 'stay') return table;
   // Until it is answered nothing is read of columns that may be others.
   if (answer === null) return { ...table, rows: [] };
   const titles = table.titles.map((title, column) => (columns.some((moved) => moved.column === column - by) ? table.titles[column - by]! : columns.some((moved) => moved.column === column) ? '' : title));
   return { ...table, titles };
 }
+
+const stepWord = (by: number) => (by > 0 ? 'next' : 'before');
 
 function roughNumber(cell: RawCell | undefined): number {
   const figure = readFigure(cellText(cell), null);
@@ -69,8 +71,8 @@ function mendLines(values: readonly LooseValue[], fits: Fits, asking: Asking): L
     const fitAll = (step: number) => own.filter(({ rowCells, column }) => !isBlank(rowCells[column + step])).every((value) => fits(value, step));
     const by = own.length < 2 || own.some((value) => fits(value, 0)) ? undefined : [1, -1].find(fitAll);
     if (by === undefined) return own;
-    const answer = asking.ask(`moved:${line}`, { code: 'moved', params: { line, found: own.map(({ cell }) => cellText(cell)).join('; ') }, choices: [String(by), 'leaveOut', '0'], suggestion: String(by) });
-    return answer === null || answer === 'leaveOut' ? [] : own.map((value) => stepped(value, Number(answer)));
+    const answer = asking.ask(`moved:${line}`, { code: 'moved', params: { line, found: own.map(({ cell }) => cellText(cell)).join('; ') }, choices: [stepWord(by), 'leaveOut', 'stay'], suggestion: stepWord(by) });
+    return answer === null || answer === 'leaveOut' ? [] : own.map((value) => stepped(value, answer === 'stay' ? 0 : by));
   });
 }
 

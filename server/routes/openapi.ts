@@ -76,7 +76,7 @@ const operations: Operation[] = [
   { method: 'delete', path: '/api/estates/{estateId}/imports/{importId}', summary: 'Take a line off the import desk' },
   { method: 'get', path: '/api/estates/{estateId}/files/{fileId}/download', summary: 'An original, byte for byte' },
   { method: 'get', path: '/api/formats', summary: 'Formats that zones can be exported in', answer: z.object({ items: z.array(exportFormatLine), total: z.int() }) },
-  { method: 'post', path: '/api/estates/{estateId}/blocks/{blockId}/zonings', summary: 'Ask for a zoning; answers 202 with the job that computes it', body: newZoning, answer: z.object({ zoningId: z.uuid(), jobId: z.uuid() }) },
+  { method: 'post', path: '/api/estates/{estateId}/blocks/{blockId}/zonings', summary: 'Ask for a zoning; answers 202 with the job that computes it', body: newZoning, answer: z.object({ zoningId: z.uuid(), jobId: z.uuid(), together: z.array(z.object({ blockId: z.uuid(), zoningId: z.uuid(), jobId: z.uuid() })) }) },
   { method: 'get', path: '/api/estates/{estateId}/blocks/{blockId}/zonings', summary: 'Zonings of a block, newest first', answer: z.object({ items: z.array(zoningLine), total: z.int() }) },
   { method: 'get', path: '/api/estates/{estateId}/zonings', summary: 'Zonings of the estate, newest first (?block=)', answer: z.object({ items: z.array(zoningLine), total: z.int() }) },
   { method: 'get', path: '/api/estates/{estateId}/zones', summary: 'Zones in force over the estate, as GeoJSON' },

@@ -20,7 +20,8 @@ import { decideWeights, prepareLayers, weightedColumns } from './zoningPrepare.t
 import { rateFits } from './zoningQuality.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
 import { zoneCountOf } from './zoningStats.ts';
-import type { StageMark, ZoningCandidate, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
+import { stackBlocks } from './zoningTogether.ts';
+import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
 export const ENGINE_VERSION = '2';
@@ -41,10 +42,10 @@ const FRUIT_STREAM = 50;
 
 /** Throws AnalysisError for input that cannot be zoned. */
 export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): ZoningResult {
-  const { grid, readings = [] } = input;
   const options = checkedOptions(input);
+  const { grid, layers: given, readings, ownPart } = stackBlocks(input, input.together ?? []);
   const areaM2 = polygonsArea(grid.outlineXY);
-  const { layers, warnings } = prepareLayers(grid, input.layers, options);
+  const { layers, warnings } = prepareLayers(grid, given, options);
   mark('prepare', 0.1);
   const advisedWeights = adviseLayers(grid, layers.map((layer) => ({ ...layer, cells: layer.smoothed })), streamOf(options.seed, ADVICE_STREAM));
   const weights = decideWeights(layers, advisedWeights);
@@ -61,15 +62,17 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
   const count = adviseZoneCount({ ...evidence, workable: workableNumbers(cleaned) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
-  const drawn = cleaned.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(grid, labels) : null));
+  const own = cleaned.map(ownPart);
+  const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
-  const candidates = cleaned.map((zones, i) => candidateOf(i + 1, { grid, layers, zones, drawn: drawn[i]! }));
+  const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
+  const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]! }));
   mark('statistics', 0.98);
-  const fruit = fruitCheck(candidates[(chosenK > 1 ? chosenK : count.best) - 1]!, readings, options.seed);
+  const fruit = fruitCheck(cleaned[(chosenK > 1 ? chosenK : count.best) - 1]!, readings, options.seed);
   mark('fruit', 1);
   return {
     engineVersion: ENGINE_VERSION,
-    gridKey: grid.key,
+    gridKey: input.grid.key,
     options,
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
     advisedWeights,
@@ -87,7 +90,7 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
 }
 
 /** Defaults filled in and every option checked; layers and readings are checked against the grid. */
-function checkedOptions({ grid, layers, options = {}, readings = [] }: ZoningInput): ZoningOptions {
+function checkedOptions({ grid, layers, options = {}, readings = [], together = [] }: ZoningInput): ZoningOptions {
   const all = { ...defaultZoningOptions, ...options };
   if (all.zones !== 'advise' && !(Number.isInteger(all.zones) && all.zones >= 1 && all.zones <= MOST_ZONES)) {
     throw new AnalysisError('zones', `${all.zones} zones cannot be made; ask for advise or a whole number from 1 to ${MOST_ZONES}.`);
@@ -103,6 +106,7 @@ function checkedOptions({ grid, layers, options = {}, readings = [] }: ZoningInp
     if (ids.has(layer.id)) throw new AnalysisError('layer-twice', `Layer "${layer.id}" was given twice; give each a name of its own.`);
     ids.add(layer.id);
   }
+  for (const block of together) for (const layer of block.layers) assertCellCount(block.grid, layer.cells, `Layer "${layer.id}"`);
   for (const { measure, values } of readings) {
     if (values.some(({ value }) => !Number.isFinite(value))) throw new AnalysisError('reading', `A reading of "${measure}" is not a number; correct or remove it.`);
   }
@@ -110,7 +114,7 @@ function checkedOptions({ grid, layers, options = {}, readings = [] }: ZoningInp
 }
 
 /** The readings with the zone each lies in; those outside the zones are left out. */
-function fruitCheck({ labels }: ZoningCandidate, readings: readonly ZoningReadings[], seed: number): FruitCheck {
+function fruitCheck({ labels }: CellZones, readings: readonly ZoningReadings[], seed: number): FruitCheck {
   const measures = readings.map(({ measure, values }) => ({
     measure,
     readings: values.flatMap(({ cell, row, value }) => ((labels[cell] ?? 0) > 0 ? [{ value, row, zone: labels[cell]! }] : [])),

@@ -8,7 +8,8 @@ import { describeZones, zoneDifferences, type ZoneStatsInput } from './zoningSta
 import type { ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes.ts';
 
 export function candidateOf(k: number, input: ZoneStatsInput): ZoningCandidate {
-  const zones = describeZones(input);
+  // Of several blocks zoned together one may lack a zone that the others have.
+  const zones = describeZones(input).filter(({ areaM2 }) => areaM2 > 0);
   return { k, labels: input.zones.labels, doubt: input.zones.doubt, zones, differences: zoneDifferences(zones, input.layers) };
 }
 

@@ -43,11 +43,16 @@ export interface ZoningReadings {
   readonly values: readonly { readonly cell: number; readonly row: string | null; readonly value: number }[];
 }
 
-export interface ZoningInput {
+export interface BlockInput {
   readonly grid: Grid;
   readonly layers: readonly ZoningLayer[];
-  readonly options?: Partial<ZoningOptions>;
   readonly readings?: readonly ZoningReadings[];
+}
+
+export interface ZoningInput extends BlockInput {
+  readonly options?: Partial<ZoningOptions>;
+  /** Other blocks with the same layers, to be zoned as one with this block; weights are those of this block. */
+  readonly together?: readonly BlockInput[];
 }
 
 export type ZoningStage = 'prepare' | 'layer advice' | 'evidence' | 'clusters' | 'quality' | 'clean-up' | 'polygons' | 'statistics' | 'fruit';

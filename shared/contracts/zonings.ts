@@ -13,6 +13,8 @@ export const zoningOptions = z.object({
   smallestPatchHa: z.number().min(0).max(5).default(0.05),
   narrowestRows: z.number().min(0).max(20).default(0),
   principalComponents: z.boolean().default(false),
+  /** Other blocks zoned as one with this block: zones of one number are then of one kind in all. */
+  withBlocks: z.array(id).max(40).default([]),
 });
 export type ZoningRequestOptions = z.infer<typeof zoningOptions>;
 
@@ -79,6 +81,8 @@ const reason = z.object({ code: z.string(), about: z.string().nullable(), figure
 export const zoningView = z.object({
   ...zoningLine.shape,
   blockName: z.string(),
+  /** Names of the blocks it was zoned together with. */
+  withBlockNames: z.array(z.string()),
   options: zoningOptions,
   engineVersion: z.string(),
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),

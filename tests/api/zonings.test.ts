@@ -135,6 +135,21 @@ describe('a zoning', () => {
     expect(other.body.detail).toMatch(/agronomist/);
   });
 
+  it('is made of several blocks at once, a run for each, with the same kinds under the same numbers', async () => {
+    const second = await makePlateauBlock(owner, { name: 'Clos du Lavoir', x: 300 });
+    await BlockLayer.query().where({ blockId: second.blockId, layerId: second.layerId }).patch({ layerId: plot.layerId });
+    const asked = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ zones: 2, withBlocks: [second.blockId] }));
+    expect(asked.status, asked.text).toBe(202);
+    const { zoningId, jobId, together } = asked.body as { zoningId: string; jobId: string; together: { blockId: string; zoningId: string; jobId: string }[] };
+    expect(together.map(({ blockId }) => blockId)).toEqual([second.blockId]);
+    for (const job of [jobId, together[0]!.jobId]) await workOnZoning(job);
+    const [here, there] = [await view(zoningId, 2), await view(together[0]!.zoningId, 2)];
+    expect([here.withBlockNames, there.withBlockNames]).toEqual([['Clos du Lavoir'], ['Côte à l’Éperon']]);
+    expect(there.evidence.map(({ stability }) => stability)).toEqual(here.evidence.map(({ stability }) => stability));
+    for (const at of [0, 1]) expect(Math.abs(here.zones[at]!.layers[0]!.mean! - there.zones[at]!.layers[0]!.mean!)).toBeLessThan(0.05);
+    expect((await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ withBlocks: [randomUUID()] }))).status).toBe(404);
+  });
+
   it('leaves out a layer with red findings until somebody answers for it', async () => {
     const ask = () => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe());
     await BlockLayer.query().where({ layerId: plot.layerId }).patch({ findings: [{ code: 'stripes', severity: 'red', params: {} }] });

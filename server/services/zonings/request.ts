@@ -1,5 +1,6 @@
+import type { Transaction } from 'objection';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
-import { zoningOptions, type NewZoning } from '../../../shared/contracts/zonings.ts';
+import { zoningOptions, type NewZoning, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
 import { ENGINE_VERSION } from '../../../shared/analysis/zoning.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Unusable } from '../../errors.ts';
@@ -13,25 +14,41 @@ import { readinessOf } from '../layers/view.ts';
 
 const leastCoverage = 0.6;
 
-/** Asks for a zoning of a block; it runs in the background. Whoever may only propose repeats a recipe that is stored. */
-export async function requestZoning(access: Access, blockId: string, input: NewZoning, today: string): Promise<{ zoningId: string; jobId: string }> {
-  const block = await Block.query().findOne({ estateId: access.estateId, id: blockId }).whereNull('retiredAt').throwIfNotFound();
-  const options = zoningOptions.parse(input);
+interface Asked {
+  zoningId: string;
+  jobId: string;
+}
+
+/**
+ * Asks for a zoning of a block; it runs in the background. Whoever may only propose repeats a recipe that is stored. Blocks zoned
+ * together get a zoning each; every one is computed from all of them, so each can be repeated by itself.
+ */
+export async function requestZoning(access: Access, blockId: string, input: NewZoning, today: string): Promise<Asked & { together: (Asked & { blockId: string })[] }> {
+  const options = zoningOptions.parse({ ...input, withBlocks: [...new Set(input.withBlocks)].filter((id) => id !== blockId) });
+  const all = [blockId, ...options.withBlocks];
+  const blocks = await Promise.all(all.map((id) => Block.query().findOne({ estateId: access.estateId, id }).whereNull('retiredAt').throwIfNotFound()));
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
-  await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
+  for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
   const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();
   if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make the season first.');
   return Zoning.transaction(async (trx) => {
-    await Block.query(trx).findOne({ estateId: access.estateId, id: blockId }).forUpdate();
-    const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId }).max('number as number')) as unknown as { number: number | null }[];
-    const zoning = await Zoning.query(trx).insert({
-      estateId: access.estateId, blockId, seasonId: season.id, number: (last?.number ?? 0) + 1, name: input.name, state: 'running',
-      options, seed: input.seed, engineVersion: ENGINE_VERSION, gridKey: block.gridKey, createdBy: access.personId,
-    });
-    const jobId = await enqueueJob(trx, access, { kind: 'zoning', subjectType: 'zoning', subjectId: zoning.id });
-    await writeAudit(trx, access, { action: 'zoning.run', subjectType: 'zoning', subjectId: zoning.id, subjectName: block.name, after: { ...options, seed: input.seed } });
-    return { zoningId: zoning.id, jobId };
+    const made: (Asked & { blockId: string })[] = [];
+    for (const block of blocks) made.push({ blockId: block.id, ...(await insertZoning(trx, access, { block, seasonId: season.id, input, options: { ...options, withBlocks: all.filter((id) => id !== block.id) } })) });
+    const [{ zoningId, jobId } = made[0]!, ...together] = made;
+    return { zoningId, jobId, together };
   });
+}
+
+async function insertZoning(trx: Transaction, access: Access, { block, seasonId, input, options }: { block: Block; seasonId: string; input: NewZoning; options: ZoningRequestOptions }): Promise<Asked> {
+  await Block.query(trx).findOne({ estateId: access.estateId, id: block.id }).forUpdate();
+  const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId: block.id }).max('number as number')) as unknown as { number: number | null }[];
+  const zoning = await Zoning.query(trx).insert({
+    estateId: access.estateId, blockId: block.id, seasonId, number: (last?.number ?? 0) + 1, name: input.name, state: 'running',
+    options, seed: input.seed, engineVersion: ENGINE_VERSION, gridKey: block.gridKey, createdBy: access.personId,
+  });
+  const jobId = await enqueueJob(trx, access, { kind: 'zoning', subjectType: 'zoning', subjectId: zoning.id });
+  await writeAudit(trx, access, { action: 'zoning.run', subjectType: 'zoning', subjectId: zoning.id, subjectName: block.name, after: { ...options, seed: input.seed } });
+  return { zoningId: zoning.id, jobId };
 }
 
 async function requireKnownRecipe(access: Access, blockId: string, options: ReturnType<typeof zoningOptions.parse>): Promise<void> {

@@ -1,8 +1,8 @@
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import { cellAt } from '../../../shared/analysis/grid.ts';
 import { defaultZoningOptions } from '../../../shared/analysis/zoning.ts';
-import type { ZoningInput, ZoningReadings, ZoningResult } from '../../../shared/analysis/zoningTypes.ts';
-import { zoningOptions } from '../../../shared/contracts/zonings.ts';
+import type { BlockInput, ZoningInput, ZoningReadings, ZoningResult } from '../../../shared/analysis/zoningTypes.ts';
+import { zoningOptions, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { Clash } from '../../errors.ts';
 import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -38,12 +38,17 @@ export const zoningJob: JobHandler = {
 /** Everything that decides the outcome, from what is stored: the same record gives the same zones. */
 export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput> {
   const options = zoningOptions.parse(zoning.options);
-  const grid = gridOf(ground);
-  if (zoning.gridKey !== grid.key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
-  const found = await loadBlockLayers(zoning.estateId, zoning.blockId, options.layers.map(({ layerId }) => layerId));
-  const layers = found.map((entry) => zoningLayer(entry, options.layers.find(({ layerId }) => layerId === entry.layer.id)!.weight));
+  if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
+  const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));
   const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, principalComponents } = options;
-  return { grid, layers, readings: await fruitOf(zoning, ground, grid), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, principalComponents, seed: zoning.seed, drawAll: true } };
+  return { ...(await blockInput(zoning, ground, options)), together, options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, principalComponents, seed: zoning.seed, drawAll: true } };
+}
+
+async function blockInput(zoning: Zoning, ground: BlockVines, options: ZoningRequestOptions): Promise<BlockInput> {
+  const grid = gridOf(ground);
+  const found = await loadBlockLayers(zoning.estateId, ground.block.id, options.layers.map(({ layerId }) => layerId));
+  const layers = found.map((entry) => zoningLayer(entry, options.layers.find(({ layerId }) => layerId === entry.layer.id)!.weight));
+  return { grid, layers, readings: await fruitOf(zoning, ground, grid) };
 }
 
 /** The newest visit of each measure of fruit in the zoning's season, up to the moment it was asked for. */

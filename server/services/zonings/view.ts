@@ -85,7 +85,8 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
   return {
     ...line!,
     blockName: ground.block.name,
-    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, principalComponents: false },
+    withBlockNames: options.success && options.data.withBlocks.length > 0 ? (await Block.query().where({ estateId: access.estateId }).findByIds(options.data.withBlocks).orderBy('name').select('name')).map(({ name }) => name) : [],
+    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, principalComponents: false, withBlocks: [] },
     engineVersion: zoning.engineVersion,
     layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
     isJudged: verdict?.isJudged ?? false,

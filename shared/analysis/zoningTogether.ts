@@ -1,0 +1,98 @@
+/**
+ * Several blocks zoned as one, so that zones of one number are of one kind in all of them. Their grids are stacked in one plane,
+ * so far apart that neither smoothing nor any comparison at a distance reaches from one to the next; what comes out is cut
+ * apart again. In: the block itself and the others. Out: one grid with its layers and readings, and the place of the block.
+ * The order is that of the grids' names, so each of the blocks gets the same outcome whichever asks. Cost: a copy of the cells.
+ */
+
+import type { MultiPolygonXY } from '../geo/coordinates.ts';
+import { AnalysisError } from './analysisError.ts';
+import type { Cells, Grid } from './grid.ts';
+import type { CellZones } from './zoningFit.ts';
+import type { BlockInput, ZoningLayer, ZoningReadings } from './zoningTypes.ts';
+
+export interface StackedBlocks {
+  readonly grid: Grid;
+  readonly layers: readonly ZoningLayer[];
+  readonly readings: readonly ZoningReadings[];
+  /** The block's own part of what was made of all. */
+  readonly ownPart: (zones: CellZones) => CellZones;
+}
+
+export function stackBlocks(own: BlockInput, others: readonly BlockInput[]): StackedBlocks {
+  const { grid, layers, readings = [] } = own;
+  if (others.length === 0) return { grid, layers, readings, ownPart: (zones) => zones };
+  const blocks = [own, ...others].sort((a, b) => (a.grid.key < b.grid.key ? -1 : 1));
+  for (const block of others) assertFits(own, block);
+  const place = placesOf(blocks.map((block) => block.grid));
+  const share = new Float32Array(place.cols * place.rows);
+  const inside = new Uint8Array(share.length);
+  blocks.forEach((block, at) => {
+    put(share, block.grid.share, { block, place, at });
+    put(inside, block.grid.inside, { block, place, at });
+  });
+  const stacked: Grid = { ...grid, key: blocks.map((block) => block.grid.key).join(' '), cols: place.cols, rows: place.rows, share, inside, outlineXY: blocks.flatMap((block): MultiPolygonXY => [...block.grid.outlineXY]) };
+  const start = place.firstRows[blocks.indexOf(own)]!;
+  return {
+    grid: stacked,
+    layers: layers.map((layer) => ({ ...layer, cells: stackedCells(layer.id, blocks, place) })),
+    readings: stackedReadings(blocks, place),
+    ownPart: ({ labels, doubt }) => ({ labels: cut(labels, { grid, cols: place.cols, start }), doubt: cut(doubt, { grid, cols: place.cols, start }) }),
+  };
+}
+
+interface Places {
+  readonly cols: number;
+  readonly rows: number;
+  readonly firstRows: readonly number[];
+}
+
+/** Further apart than the square root of all cells, which is as far as covariances are looked at, and than any smoothing. */
+function placesOf(grids: readonly Grid[]): Places {
+  const apart = Math.ceil(Math.sqrt(grids.reduce((sum, { inside }) => sum + inside.length, 0))) + 1;
+  let rows = 0;
+  const firstRows = grids.map((grid) => {
+    const first = rows;
+    rows += grid.rows + apart;
+    return first;
+  });
+  return { cols: Math.max(...grids.map(({ cols }) => cols)), rows: rows - apart, firstRows };
+}
+
+interface Placing {
+  readonly block: BlockInput;
+  readonly place: Places;
+  readonly at: number;
+}
+
+function put(into: Float32Array | Uint8Array, from: Float32Array | Uint8Array, { block: { grid }, place, at }: Placing): void {
+  for (let row = 0; row < grid.rows; row++) into.set(from.subarray(row * grid.cols, (row + 1) * grid.cols), (place.firstRows[at]! + row) * place.cols);
+}
+
+function stackedCells(id: string, blocks: readonly BlockInput[], place: Places): Cells {
+  const cells = new Float32Array(place.cols * place.rows).fill(NaN);
+  blocks.forEach((block, at) => put(cells, block.layers.find((layer) => layer.id === id)!.cells, { block, place, at }));
+  return cells;
+}
+
+function stackedReadings(blocks: readonly BlockInput[], place: Places): ZoningReadings[] {
+  const measures = [...new Set(blocks.flatMap(({ readings = [] }) => readings.map(({ measure }) => measure)))].sort();
+  return measures.map((measure) => ({
+    measure,
+    values: blocks.flatMap(({ grid, readings = [] }, at) =>
+      readings.filter((one) => one.measure === measure).flatMap(({ values }) => values.map((reading) => ({ ...reading, cell: reading.cell < 0 ? -1 : (Math.floor(reading.cell / grid.cols) + place.firstRows[at]!) * place.cols + (reading.cell % grid.cols) }))),
+    ),
+  }));
+}
+
+function cut<Values extends Uint8Array | Float32Array>(from: Values, { grid, cols, start }: { grid: Grid; cols: number; start: number }): Values {
+  const into = from.slice(0, grid.cols * grid.rows) as Values;
+  for (let row = 0; row < grid.rows; row++) into.set(from.subarray((start + row) * cols, (start + row) * cols + grid.cols), row * grid.cols);
+  return into;
+}
+
+function assertFits(own: BlockInput, other: BlockInput): void {
+  if (other.grid.cellSizeM !== own.grid.cellSizeM) throw new AnalysisError('cell-sizes', `Blocks with cells of ${own.grid.cellSizeM} m and of ${other.grid.cellSizeM} m cannot be zoned together; give them the same cell size.`);
+  const missing = own.layers.find(({ id }) => !other.layers.some((layer) => layer.id === id));
+  if (missing) throw new AnalysisError('layer-missing', `Layer "${missing.id}" does not lie on all of the blocks; leave it out or zone them apart.`);
+}

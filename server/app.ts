@@ -21,7 +21,7 @@ import { fieldPhotoRoutes } from './routes/fieldPhotos.ts';
 import { describedApi } from './routes/openapi.ts';
 import { formatRoutes } from './routes/formats.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
-import { harvestRoutes } from './routes/harvest.ts';
+import { harvestRoutes, noticeStateRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
 import { labRoutes } from './routes/lab.ts';
@@ -37,6 +37,7 @@ import { roundRoutes } from './routes/rounds.ts';
 import { searchRoutes } from './routes/search.ts';
 import { sessionRoutes } from './routes/session.ts';
 import { todayRoutes } from './routes/today.ts';
+import { weatherRoutes } from './routes/weather.ts';
 import { zoningRoutes } from './routes/zonings.ts';
 import { sessionMs } from './services/account/openSessions.ts';
 import { receiveInPieces } from './storage/resumable.ts';
@@ -98,6 +99,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
   api.use(crewDoorRoutes({ csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
   api.use(estateListRoutes());
   api.use(formatRoutes());
+  api.use(noticeStateRoutes());
   api.use('/estates/:estateId', estateGuard, makeEstateApi(config));
   api.use(() => {
     throw new Missing();
@@ -111,7 +113,7 @@ function makeEstateApi(config: Config): Router {
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
   router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }));
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
-  router.use(harvestRoutes({ publicUrl }));
+  router.use(harvestRoutes({ publicUrl }), weatherRoutes());
   router.use(todayRoutes(), searchRoutes());
   return router;
 }

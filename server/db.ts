@@ -12,6 +12,7 @@ import * as m009 from '../migrations/009_field.ts';
 import * as m011 from '../migrations/011_surveys.ts';
 import * as m012 from '../migrations/012_invited_roles_and_backups.ts';
 import * as m010 from '../migrations/010_zoning_editors.ts';
+import * as m008 from '../migrations/008_harvest_records.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -26,6 +27,7 @@ const migrations: Record<string, Knex.Migration> = {
   '011_surveys': m011,
   '012_invited_roles_and_backups': m012,
   '010_zoning_editors': m010,
+  '008_harvest_records': m008,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

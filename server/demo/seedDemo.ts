@@ -5,6 +5,7 @@ import { seedBlocks } from './seedBlocks.ts';
 import { seedEstate } from './seedEstate.ts';
 import { seedFruit } from './seedFruit.ts';
 import { seedField } from './seedField.ts';
+import { seedHarvest } from './seedHarvest.ts';
 import { seedLayers } from './seedLayers.ts';
 import { seedLots } from './seedLots.ts';
 import { seedPlans } from './seedPlans.ts';
@@ -12,7 +13,7 @@ import { seedZones } from './seedZones.ts';
 
 const groundSeed = 7;
 
-export type SeedStep = 'estate' | 'blocks' | 'layers' | 'fruit' | 'zones' | 'plans' | 'lots';
+export type SeedStep = 'estate' | 'blocks' | 'layers' | 'fruit' | 'zones' | 'plans' | 'lots' | 'harvest';
 
 /**
  * Lays the demo estate unless there is one. The same seed gives the same estate; its calendar is laid around today.
@@ -40,6 +41,8 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     await seedField(made, { days, now: options.now });
     step('lots');
     await seedLots(made, days);
+    step('harvest');
+    await seedHarvest(made, { days, now: options.now });
   } catch (error) {
     // Half a demo would look like a broken estate; the next start lays it anew.
     await eraseDemo();

@@ -29,10 +29,14 @@ const visits: readonly Visit[] = [
   ]),
   { yearsAgo: 0, offset: -52, measures: ['clusterCount'], vines: 42 },
   { yearsAgo: 0, offset: -50, measures: ['clusterWeight'], vines: 36 },
-  ...[-22, -15, -8, -1].map((offset): Visit => ({ yearsAgo: 0, offset, measures: ['brix', 'ph', 'ta'], vines: 30 })),
+  ...[-22, -15].map((offset): Visit => ({ yearsAgo: 0, offset, measures: ['brix', 'ph', 'ta'], vines: 30 })),
+  ...[-8, -1].map((offset): Visit => ({ yearsAgo: 0, offset, measures: ['brix', 'ph', 'ta', 'berryWeight'], vines: 30 })),
 ];
 
-const units: Record<string, string> = { brix: '°Brix', ph: 'pH', ta: 'g/L', clusterCount: 'clusters', clusterWeight: 'g' };
+/** The visit after the wet spell: some of the fruit was still wet. */
+const wetVisit = -8;
+
+const units: Record<string, string> = { brix: '°Brix', ph: 'pH', ta: 'g/L', clusterCount: 'clusters', clusterWeight: 'g', berryWeight: 'g' };
 
 /** Readings on single vines, drawn from what the ground gives them; shallow soil ripens earlier and bears less. */
 export async function seedFruit(made: DemoEstate, laid: readonly LaidBlock[], options: { ground: Ground; days: DemoDays }): Promise<void> {
@@ -59,6 +63,7 @@ export async function seedFruit(made: DemoEstate, laid: readonly LaidBlock[], op
           personId: measureCode.startsWith('cluster') ? crew : lab,
           source: 'demo' as const,
           state: 'checked' as const,
+          flags: (visit.offset === wetVisit && index === 0 && measureCode === 'brix' && random() < 0.4 ? ['wetFruit'] : []) as never,
         })),
       ),
     );
@@ -100,6 +105,9 @@ function valueOf(measureCode: string, { block, visit, vigour, random }: Circumst
       return round(3.32 + 0.011 * (day + 8) + 0.04 * vintage - 0.22 * rich + noise(0.08), 2);
     case 'ta':
       return round(Math.max(3, 7.2 - 0.085 * (day + 8) - 0.3 * vintage + 2.1 * rich + noise(0.65)), 1);
+    case 'berryWeight':
+      // Berries lose a little water in the last weeks.
+      return round(Math.max(0.4, 1.42 + 0.3 * rich - 0.006 * (day + 8) + noise(0.11)), 2);
     case 'clusterCount':
       return Math.max(2, Math.round(demo.clusters * (1 + 0.5 * rich) * (1 + 0.05 * vintage) * (1 + noise(0.22))));
     default: {

@@ -17,6 +17,7 @@ interface DemoLot {
 }
 
 const lots: readonly DemoLot[] = [
+  { name: 'First white', wineType: 'white', pick: -3, tank: 'W2', parts: [['Millrace', 2]] },
   { name: 'Marl red', wineType: 'red', pick: 12, tank: 'T1', parts: [['Heron Bank', 1], ['Long Furrow', 1]] },
   { name: 'Hollow red', wineType: 'red', pick: 17, tank: 'T2', parts: [['Heron Bank', 3], ['Long Furrow', 3]] },
   { name: 'Early rosé', wineType: 'rose', pick: 9, tank: 'T4', parts: [["Tinker's Acre", 1]] },
@@ -31,7 +32,7 @@ export async function seedLots(made: DemoEstate, days: DemoDays): Promise<void> 
   for (const { name, wineType, pick, tank, parts } of lots) {
     const wanted = parts.flatMap(([block, number]) => zones.filter((zone) => zone.blockName === block && zone.number === number).map((zone) => ({ zoneId: zone.id, rowIds: null })));
     if (wanted.length === 0) continue;
-    const { id } = await createLot(access, { name, wineType, scenarioId: null, pickOn: null, tankId: null }, days.day(0));
+    const { id } = await createLot(access, { name, wineType, scenarioId: null, pickOn: null, tankId: null, crew: '' }, days.day(0));
     const version = async () => (await Lot.query().findById(id).throwIfNotFound()).version;
     await setLotParts(access, id, { parts: wanted }, await version());
     await changeLot(access, id, { pickOn: days.day(pick), tankId: tanks.find((candidate) => candidate.name === tank)?.id ?? null }, await version());

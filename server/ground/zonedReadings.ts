@@ -1,6 +1,7 @@
 import type { Point } from 'geojson';
 import { toUtm } from '../../shared/geo/utm.ts';
 import { Bag } from '../models/Bag.ts';
+import { AuditEntry } from '../models/AuditEntry.ts';
 import { Estate } from '../models/Estate.ts';
 import { asGeoJson } from '../models/geometry.ts';
 import { Reading } from '../models/Reading.ts';
@@ -18,11 +19,15 @@ export interface ZonedReading {
   zone: number;
   /** Day of the visit in the estate's own time. */
   visit: string;
+  /** Day on which it reached the estate's books. */
+  receivedOn: string;
   vineKey: string;
   roundId: string | null;
   seasonId: string;
   state: Reading['state'];
   excludedReason: string | null;
+  /** Fruit was wet when it was taken. */
+  wetFruit: boolean;
   /** Index in the vine table, or -1. */
   vine: number;
 }
@@ -37,7 +42,7 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
   const query = Reading.query()
     .where('readings.estateId', estateId)
     .where('readings.blockId', ground.block.id)
-    .whereNotExists(Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId'))
+    .whereNotExists(correctionsBy(options.until ?? null))
     .orderBy('takenAt')
     .select('readings.*', asGeoJson('readings.position').as('position'));
   if (options.seasonId) query.where('readings.seasonId', options.seasonId);
@@ -45,6 +50,7 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
   const [rows, estate, bags] = await Promise.all([query, Estate.query().findById(estateId).throwIfNotFound(), Bag.query().where({ estateId, blockId: ground.block.id }).whereNot({ state: 'void' }).select('id', 'vines')]);
   const zoneByBag = new Map(bags.map((bag) => [bag.id, zoneOfBag(ground, zoneOf, bag.vines)]));
   const dayOf = dayIn(estate.timeZone);
+  const reasonThen = options.until ? await exclusionsAt(estateId, rows, options.until) : null;
   return rows.map((row) => {
     const vine = vineOf(ground, row);
     const isOfBag = vine < 0 && row.bagId !== null;
@@ -55,15 +61,34 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
       samples: row.samples,
       zone: isOfBag ? (zoneByBag.get(row.bagId!) ?? 0) : vine < 0 ? 0 : zoneOf[vine]!,
       visit: dayOf(row.takenAt),
+      receivedOn: dayOf(row.receivedAt),
       // Somebody who settled a conflict said that a `separate` one was a vine of its own.
       vineKey: isOfBag ? `bag ${row.bagId}` : vine < 0 || (row.flags as string[]).includes('separate') ? row.id : String(vine),
       roundId: row.roundId,
       seasonId: row.seasonId,
       state: row.state,
-      excludedReason: row.excludedReason,
+      excludedReason: reasonThen?.has(row.id) ? reasonThen.get(row.id)! : row.excludedReason,
+      wetFruit: Array.isArray(row.flags) && row.flags.includes('wetFruit'),
       vine,
     };
   });
+}
+
+function correctionsBy(until: Date | null) {
+  const later = Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId');
+  return until === null ? later : later.where('later.receivedAt', '<=', until);
+}
+
+/** What the history says of readings that were left out, or taken in again, after that moment: their reason as it stood then. */
+async function exclusionsAt(estateId: string, rows: readonly { id: string }[], until: Date): Promise<Map<string, string | null>> {
+  const later = await AuditEntry.query()
+    .where({ estateId, subjectType: 'reading' })
+    .whereIn('action', ['readings.exclude', 'readings.include'])
+    .where('at', '>', until)
+    .whereIn('subjectId', rows.map(({ id }) => id))
+    .orderBy('id', 'desc');
+  // Newest first, so that the first deed after that moment is written last and its "before" stays.
+  return new Map(later.map(({ subjectId, before }) => [subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null]));
 }
 
 const reachM = 3;

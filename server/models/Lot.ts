@@ -13,6 +13,8 @@ export class Lot extends EstateModel {
   declare tankId: string | null;
   declare targets: unknown;
   declare factors: unknown;
+  /** Who picks, in words. */
+  declare crew: string;
   declare version: number;
   declare confirmedBy: string | null;
   declare confirmedAt: Date | null;

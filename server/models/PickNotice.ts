@@ -6,6 +6,8 @@ export class PickNotice extends EstateModel {
 
   declare lotId: string;
   declare number: number;
+  /** Unguessable: what a code on paper leads to. */
+  declare code: string;
   declare replacesNumber: number | null;
   declare voidAt: Date | null;
   declare body: unknown;

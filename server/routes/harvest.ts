@@ -1,10 +1,26 @@
 import { Router } from 'express';
+import { z } from 'zod';
 import { newNotice } from '../../shared/contracts/notices.ts';
-import { newTicket } from '../../shared/contracts/tickets.ts';
+import { factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
+import { newTicket, ticketFile } from '../../shared/contracts/tickets.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
-import { listNotices, noticePeople, readNotice, sendNotice } from '../services/lots/notices.ts';
+import { enterCellarResult, listCellarResults, listFactors, switchFactor } from '../services/lots/cellar.ts';
+import { listNotices, noticePeople, noticeState, printNotice, readNotice, sendNotice } from '../services/lots/notices.ts';
+import { seasonLetter } from '../services/lots/letter.ts';
 import { seasonReview } from '../services/lots/review.ts';
-import { enterTicket, listTickets } from '../services/lots/tickets.ts';
+import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
+
+const letterQuery = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
+const today = () => new Date().toISOString().slice(0, 10);
+
+/** Whether a notice on paper still holds; open to whoever has the paper, by its unguessable code. */
+export function noticeStateRoutes(): Router {
+  const router = Router();
+  router.get('/notice-state/:code', async (request, response) => {
+    response.set('cache-control', 'no-store').json(await noticeState(idParam(request, 'code')));
+  });
+  return router;
+}
 
 /** Pick notices, scale tickets and the season's review. Notices and tickets are never changed, only replaced. */
 export function harvestRoutes(options: { publicUrl: (host: string) => string }): Router {
@@ -26,6 +42,11 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
     await readNotice(accessOf(request), idParam(request, 'noticeId'), new Date());
     response.status(204).end();
   });
+  router.get('/notices/:noticeId/sheet', allow('notices.acknowledge'), async (request, response) => {
+    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const { name, body } = await printNotice(accessOf(request), idParam(request, 'noticeId'), { publicUrl, now: new Date() });
+    response.type('application/pdf').attachment(name).send(body);
+  });
 
   router.get('/tickets', allow('lots.see', 'read'), async (request, response) => {
     const items = await listTickets(accessOf(request));
@@ -34,9 +55,32 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   router.post('/tickets', allow('tickets.enter'), async (request, response) => {
     response.status(201).json(await enterTicket(accessOf(request), newTicket.parse(request.body), new Date()));
   });
+  router.post('/tickets/import', allow('tickets.enter'), async (request, response) => {
+    response.json(await importTickets(accessOf(request), ticketFile.parse(request.body), { today: today(), now: new Date() }));
+  });
+  router.get('/cellar-results', allow('lots.see', 'read'), async (request, response) => {
+    const items = await listCellarResults(accessOf(request));
+    response.json({ items, total: items.length });
+  });
+  router.post('/lots/:lotId/cellar-results', allow('tickets.enter'), async (request, response) => {
+    response.status(201).json(await enterCellarResult(accessOf(request), idParam(request, 'lotId'), newCellarResult.parse(request.body), new Date()));
+  });
+  router.get('/factors', allow('lots.see', 'read'), async (request, response) => {
+    const items = await listFactors(accessOf(request));
+    response.json({ items, total: items.length });
+  });
+  router.put('/factors', allow('factors.switch'), async (request, response) => {
+    await switchFactor(accessOf(request), factorSwitch.parse(request.body), new Date());
+    response.status(204).end();
+  });
 
+  router.get('/blocks/:blockId/season-letter', allow('review.see'), async (request, response) => {
+    const { size } = letterQuery.parse(request.query);
+    const { name, body } = await seasonLetter(accessOf(request), idParam(request, 'blockId'), { size, today: today(), now: new Date() });
+    response.type('application/pdf').attachment(name).send(body);
+  });
   router.get('/review', allow('review.see', 'read'), async (request, response) => {
-    response.json(await seasonReview(accessOf(request), { today: new Date().toISOString().slice(0, 10) }));
+    response.json(await seasonReview(accessOf(request), { today: today() }));
   });
   return router;
 }

@@ -1,16 +1,22 @@
 import { Router } from 'express';
 import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
-import { lotChange, lotParts, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
+import { id, isoDate } from '../../shared/contracts/common.ts';
+import { dayCapacity, lotChange, lotParts, newLot, newScenario, newTank, tankChange, zoneMove } from '../../shared/contracts/lots.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { listTanks, lotsBoard } from '../services/lots/board.ts';
-import { changeLot, changeTank, confirmLot, copyScenario, createLot, createTank, deleteLot, setLotParts } from '../services/lots/changeLots.ts';
+import { newSuggestion } from '../../shared/contracts/suggestions.ts';
+import { listCapacities, setCapacity } from '../services/lots/capacities.ts';
+import { changeLot, changeTank, confirmLot, createLot, createTank, deleteLot, moveZone, setLotParts } from '../services/lots/changeLots.ts';
+import { listDecisions } from '../services/lots/decisions.ts';
+import { applyScenario, copyScenario, deleteScenario } from '../services/lots/scenarios.ts';
+import { suggestScenario } from '../services/lots/suggest.ts';
 import { blockRipening } from '../services/results/ripening.ts';
 import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
 const boardQuery = z.object({ scenario: id.optional() });
 const resultsQuery = z.object({ season: id.optional() });
+const ripeningQuery = z.object({ known: isoDate.optional() });
 const today = () => new Date().toISOString().slice(0, 10);
 
 /** Results by zone, pick lots, what-ifs and tanks. Writes on a lot name its version in If-Match. */
@@ -22,7 +28,8 @@ export function lotRoutes(): Router {
     response.json(await zoneResults(accessOf(request), idParam(request, 'zoningId'), season ? { seasonId: season } : {}));
   });
   router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
-    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId')));
+    const { known } = ripeningQuery.parse(request.query);
+    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: today(), knownOn: known ?? null }));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {
@@ -39,6 +46,10 @@ export function lotRoutes(): Router {
     await setLotParts(accessOf(request), idParam(request, 'lotId'), lotParts.parse(request.body), versionMatched(request));
     response.status(204).end();
   });
+  router.post('/lot-moves', allow('lots.build', 'propose'), async (request, response) => {
+    await moveZone(accessOf(request), zoneMove.parse(request.body));
+    response.status(204).end();
+  });
   router.post('/lots/:lotId/confirm', allow('lots.confirm', 'propose'), async (request, response) => {
     await confirmLot(accessOf(request), idParam(request, 'lotId'), versionMatched(request), new Date());
     response.status(204).end();
@@ -49,6 +60,28 @@ export function lotRoutes(): Router {
   });
   router.post('/scenarios', allow('lots.build', 'propose'), async (request, response) => {
     response.status(201).json(await copyScenario(accessOf(request), newScenario.parse(request.body)));
+  });
+  router.post('/scenarios/:scenarioId/apply', allow('lots.build'), async (request, response) => {
+    response.json(await applyScenario(accessOf(request), idParam(request, 'scenarioId')));
+  });
+  router.delete('/scenarios/:scenarioId', allow('lots.build'), async (request, response) => {
+    await deleteScenario(accessOf(request), idParam(request, 'scenarioId'));
+    response.status(204).end();
+  });
+  router.post('/lot-suggestions', allow('lots.build', 'propose'), async (request, response) => {
+    response.status(201).json(await suggestScenario(accessOf(request), newSuggestion.parse(request.body), { today: today() }));
+  });
+  router.get('/lots/:lotId/decisions', allow('lots.see', 'read'), async (request, response) => {
+    const items = await listDecisions(accessOf(request), idParam(request, 'lotId'));
+    response.json({ items, total: items.length });
+  });
+  router.get('/day-capacities', allow('lots.see', 'read'), async (request, response) => {
+    const items = await listCapacities(accessOf(request));
+    response.json({ items, total: items.length });
+  });
+  router.put('/day-capacities', allow('lots.build', 'propose'), async (request, response) => {
+    await setCapacity(accessOf(request), dayCapacity.parse(request.body));
+    response.status(204).end();
   });
 
   router.get('/tanks', allow('lots.see', 'read'), async (request, response) => {

@@ -13,6 +13,7 @@ import { asideReading, blockLayerView, cleaningChange, layerChange, overrideChan
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
+import { weatherDay, weatherFile, weatherReading, weatherView } from '../../shared/contracts/weather.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { openSession, passwordChange, resetAnswer, resetRequest } from '../../shared/contracts/account.ts';
 import { searchAnswer } from '../../shared/contracts/search.ts';
@@ -135,6 +136,10 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/estates/{estateId}/notices/{noticeId}/read', summary: 'Note that a notice was read' },
   { method: 'post', path: '/api/estates/{estateId}/tickets', summary: 'Enter a scale ticket, or one that corrects another', body: newTicket },
   { method: 'get', path: '/api/estates/{estateId}/review', summary: 'Forecast against scale, and whether zones mattered', answer: reviewView },
+  { method: 'get', path: '/api/estates/{estateId}/weather', summary: 'Temperatures and rain by day, with the heat of the season', answer: weatherView },
+  { method: 'put', path: '/api/estates/{estateId}/weather', summary: 'Keep the weather of a day', body: weatherDay },
+  { method: 'delete', path: '/api/estates/{estateId}/weather/{day}', summary: 'Take a day out' },
+  { method: 'post', path: '/api/estates/{estateId}/weather/import', summary: "Read a station's table back; with apply, keep all of it", body: weatherFile, answer: weatherReading },
   { method: 'get', path: '/api/estates/{estateId}/jobs/{jobId}', summary: 'Progress of a job', answer: jobView },
 ];
 

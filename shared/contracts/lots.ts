@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id, isoDate, shortName } from './common.ts';
+import { suggestionView } from './suggestions.ts';
 
 export const wineTypes = ['red', 'white', 'rose'] as const;
 export const wineType = z.enum(wineTypes);
@@ -42,7 +43,7 @@ export const lotZone = z.object({
 });
 export type LotZone = z.infer<typeof lotZone>;
 
-export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure, /** Rows of a part of a zone; null when all of it is in the lot. */ rowIds: z.array(id).nullable() });
+export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure, /** Rows of a part of a zone; null when all of it is in the lot. */ rowIds: z.array(id).nullable(), /** The lot without this zone; null with one zone or too few readings. */ without: z.object({ brix: z.number(), betweenShare: z.number() }).nullable() });
 export type LotLine = z.infer<typeof lotLine>;
 
 export const lotSummary = z.object({
@@ -57,6 +58,10 @@ export const lotSummary = z.object({
   ta: figure.nullable(),
   weighting: z.enum(['tonnes', 'area']).nullable(),
   alcohol: z.object({ method: z.string(), low: z.number(), middle: z.number(), high: z.number() }).nullable(),
+  /** As the tank would read it, by the estate's learned offset; null while that is off. */
+  tankBrix: z.object({ figure, offset: z.number() }).nullable(),
+  /** Lots that the litres a tonne were learned from; null for the custom of the trade. */
+  litreSource: z.object({ must: z.number().int().nullable(), wine: z.number().int().nullable() }),
   mustL: figure.nullable(),
   wineL: figure.nullable(),
   betweenShare: z.number().nullable(),
@@ -74,6 +79,7 @@ export const lotView = z.object({
   pickOn: isoDate.nullable(),
   tankId: id.nullable(),
   version: z.number().int(),
+  crew: z.string(),
   lines: z.array(lotLine),
   summary: lotSummary,
 });
@@ -84,6 +90,8 @@ export type TankView = z.infer<typeof tankView>;
 
 export const lotsBoard = z.object({
   scenarioId: id,
+  /** How a proposal came about; null for lots that people made. */
+  suggestion: suggestionView.nullable(),
   scenarios: z.array(z.object({ id, name: z.string(), isLive: z.boolean() })),
   seasonId: id,
   confidence: z.number(),
@@ -93,13 +101,31 @@ export const lotsBoard = z.object({
 });
 export type LotsBoard = z.infer<typeof lotsBoard>;
 
-export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null) });
-export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable() }).partial();
+export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null), crew: z.string().trim().max(200).default('') });
+export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable(), crew: z.string().trim().max(200) }).partial();
 
 /** The whole new content of a lot: zones of any block, each whole or by rows. */
 export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200) });
+
+/** What one lot holds of a zone goes into another. */
+export const zoneMove = z.object({ zoneId: id, fromLotId: id, fromVersion: z.number().int(), toLotId: id, toVersion: z.number().int() });
 
 const litres = z.number().positive('Litres must be above 0.').max(2_000_000);
 export const newTank = z.object({ name: shortName, litres, workingFill: z.number().gt(0).max(1).default(0.8), minimumFill: z.number().min(0).lt(1).default(0.5) });
 export const tankChange = newTank.partial();
 export const newScenario = z.object({ name: shortName, copyOf: id });
+
+/** What can be picked and pressed on a day; without a day, on every day that has no line of its own. */
+export const dayCapacity = z.object({ day: isoDate.nullable().default(null), pickT: z.number().min(0).max(10_000).nullable().default(null), pressT: z.number().min(0).max(10_000).nullable().default(null), note: z.string().trim().max(200).default('') });
+export const capacityView = z.object({ day: z.string().nullable(), pickT: z.number().nullable(), pressT: z.number().nullable(), note: z.string() });
+export type CapacityView = z.infer<typeof capacityView>;
+
+/** A decision on a lot with what the screen showed at that moment. */
+export const decisionView = z.object({
+  id,
+  kind: z.enum(['confirm', 'notice']),
+  decidedBy: z.string(),
+  decidedAt: z.string(),
+  shown: z.object({ lot: lotView, zones: z.array(lotZone), tank: tankView.nullable(), confidence: z.number() }),
+});
+export type DecisionView = z.infer<typeof decisionView>;

@@ -43,3 +43,7 @@ export const newNotice = z.object({
   people: z.array(id).min(1, 'Choose at least one person who must know.').max(200),
 });
 export type NewNotice = z.infer<typeof newNotice>;
+
+/** What the code on paper says to anybody who holds it. */
+export const noticeState = z.object({ number: z.number().int(), estateName: z.string(), isVoid: z.boolean(), replacedBy: z.number().int().nullable(), pickOn: isoDate.nullable() });
+export type NoticeState = z.infer<typeof noticeState>;

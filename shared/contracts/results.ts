@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id } from './common.ts';
+import { heatSum, visitConditions } from './weather.ts';
 
 /** A mean with the range that its readings give it. Half-width and sd are null where one reading cannot tell. */
 export const measuredMean = z.object({
@@ -87,7 +88,13 @@ export const ripeningView = resultsView.extend({
   series: z.array(ripeningSeries),
   /** How often the forecasts of this season beat "no change", and how often their band held, by measure. */
   record: z.array(z.object({ measure: z.string(), n: z.number().int(), better: z.number().int(), held: z.number().int(), few: z.boolean() })),
-  /** Sum above 10 °C since the season began; null while no temperatures are kept. */
-  degreeDays: z.number().nullable(),
+  /** The day it is shown as of, or null for now. */
+  knownOn: z.string().nullable(),
+  /** Wet fruit, rain and heat beside each visit. */
+  conditions: z.array(visitConditions),
+  /** Heat above 10 °C of the season so far; null while no temperatures are kept. */
+  heat: heatSum.nullable(),
+  /** Sugar in a berry, zone by zone, where berries were weighed on two visits. */
+  loading: z.array(z.object({ zone: z.number().int(), from: z.string(), to: z.string(), word: z.enum(['loading', 'concentration', 'dilution', 'losing', 'notDistinguishable']), confidence: z.number(), sugarMg: z.number(), sugarHalfWidth: z.number().nullable(), brix: z.number(), berryWeightG: z.number() })),
 });
 export type RipeningView = z.infer<typeof ripeningView>;

@@ -14,6 +14,9 @@ const splitPart = z.object({
   kg: z.number().positive(),
   /** Weighed on its own, or shared out by bins, rows or expectation. */
   how: z.enum(['measured', 'shared']),
+  /** What the parts rest on; `count` bins or rows where they were counted. */
+  by: z.enum(['scale', 'bins', 'rows', 'share']).default('share'),
+  count: z.number().min(0).nullable().default(null),
 });
 export type TicketSplit = z.infer<typeof splitPart>;
 
@@ -53,6 +56,23 @@ export const ticketView = z.object({
 });
 export type TicketView = z.infer<typeof ticketView>;
 
+/** A weighbridge's table as text. Without `apply` it is only read back. */
+export const ticketFile = z.object({
+  text: z.string().max(500_000, 'This table is longer than 500 000 characters. Cut it to one season.'),
+  dateOrder: z.enum(['dmy', 'mdy']).nullable().default(null),
+  decimalMark: z.enum(['.', ',']).nullable().default(null),
+  unit: z.enum(massUnits).nullable().default(null),
+  apply: z.boolean().default(false),
+});
+
+export const ticketReading = z.object({
+  tickets: z.array(z.object({ line: z.number().int(), ticketNo: z.string(), lotName: z.string(), netKg: z.number(), day: z.string(), netOnly: z.boolean() })),
+  questions: z.array(z.enum(['dateOrder', 'decimalMark', 'unit'])),
+  problems: z.array(z.object({ code: z.string(), line: z.number().int().nullable(), cell: z.string() })),
+  kept: z.number().int(),
+});
+export type TicketReading = z.infer<typeof ticketReading>;
+
 /** One lot, forecast against what the scale said. */
 const reviewedLot = z.object({
   lotId: id,
@@ -65,20 +85,60 @@ const reviewedLot = z.object({
   held: z.boolean().nullable(),
 });
 
+const compared = z.object({
+  measure: z.string(),
+  unit: z.string(),
+  /** Day of the readings; null for tonnes. */
+  on: z.string().nullable(),
+  n: z.number().int().nullable(),
+  lowest: z.number().int(),
+  highest: z.number().int(),
+  least: z.number(),
+  most: z.number(),
+  difference: z.number(),
+  halfWidth: z.number().nullable(),
+  p: z.number().nullable(),
+  differ: z.boolean().nullable(),
+  /** Part of the block's spread that lies between its zones: what picking by zone could separate. */
+  betweenShare: z.number().nullable(),
+});
+
+const errorShares = z.array(z.object({ part: z.enum(['vines', 'clusters', 'clusterWeight', 'growth', 'losses', 'rest']), tonnes: z.number() }));
+
+/** Did the zones of a block matter: by measure, with what it took to know. */
 const zoneQuestion = z.object({
   blockId: id,
   blockName: z.string(),
   zones: z.number().int(),
-  measures: z.array(z.object({ measure: z.string(), unit: z.string(), on: z.string(), n: z.number().int(), least: z.number(), most: z.number(), p: z.number().nullable(), differ: z.boolean().nullable() })),
-  verdict: z.enum(['keep', 'cannotTell', 'notRead', 'oneZone']),
+  measures: z.array(compared),
+  lastSeason: z.boolean().nullable(),
+  /** Lots that its zones went to; one means that they were picked together all the same. */
+  lots: z.number().int(),
+  readings: z.number().int(),
+  /** Hours at the vine for these readings, without the walk; reckoned from the seconds a sample takes. */
+  hours: z.number(),
+  /** Readings of sugar on the newest visit, and how many its margin would have taken. */
+  sugar: z.object({ taken: z.number().int(), needed: z.number().int() }).nullable(),
+  errorParts: errorShares,
+  verdict: z.enum(['keep', 'merge', 'retire', 'notRead', 'oneZone']),
 });
+
+const summary = z.object({ n: z.number().int(), bias: z.number().nullable(), meanAbsoluteError: z.number().nullable(), meanRelativeError: z.number().nullable(), held: z.number().int(), few: z.boolean() });
+
+/** A forecast of one zone, made on one day, against what the scale said. */
+const reviewedZone = z.object({ blockId: id, blockName: z.string(), zone: z.number().int(), forecastOn: z.string(), forecast: figure, actualT: z.number(), how: z.enum(['measured', 'shared']), held: z.boolean().nullable() });
 
 export const reviewView = z.object({
   seasonId: id,
   seasonName: z.string(),
   closed: z.boolean(),
   lots: z.array(reviewedLot),
-  summary: z.object({ n: z.number().int(), bias: z.number().nullable(), meanAbsoluteError: z.number().nullable(), meanRelativeError: z.number().nullable(), held: z.number().int(), few: z.boolean() }),
+  summary,
+  zones: z.array(reviewedZone),
+  byBlock: z.array(summary.extend({ blockName: z.string() })),
+  byDate: z.array(summary.extend({ forecastOn: z.string() })),
+  /** Where the error of the last forecasts came from, in tonnes over all zones weighed. */
+  errorParts: errorShares,
   blocks: z.array(zoneQuestion),
 });
 export type ReviewView = z.infer<typeof reviewView>;

@@ -15,7 +15,7 @@ declare module 'vue-router' {
 }
 
 /** Doors that stand open to somebody who is not signed in. */
-const openToAll: ReadonlySet<RouteName> = new Set(['signIn', 'crewDoor', 'join', 'forgotten', 'reset', 'notFound']);
+const openToAll: ReadonlySet<RouteName> = new Set(['signIn', 'crewDoor', 'join', 'forgotten', 'reset', 'noticeState', 'notFound']);
 
 type SessionStore = ReturnType<typeof useSessionStore>;
 

@@ -2,9 +2,10 @@ import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
 import type { Role } from '../../shared/catalog/roles.ts';
-import type { NoticeView, newNotice } from '../../shared/contracts/notices.ts';
+import type { CellarResultView, FactorView, factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
+import type { NoticeState, NoticeView, newNotice } from '../../shared/contracts/notices.ts';
 import type { RestrictionView } from '../../shared/contracts/restrictions.ts';
-import type { newTicket, ReviewView, TicketView } from '../../shared/contracts/tickets.ts';
+import type { newTicket, ReviewView, ticketFile, TicketReading, TicketView } from '../../shared/contracts/tickets.ts';
 import { http } from '../lib/http.ts';
 
 interface Listed<Item> {
@@ -24,6 +25,8 @@ export const useHarvestStore = defineStore('harvest', () => {
   const restrictions = shallowRef<readonly RestrictionView[]>([]);
   const tickets = shallowRef<readonly TicketView[]>([]);
   const review = shallowRef<ReviewView | null>(null);
+  const results = shallowRef<readonly CellarResultView[]>([]);
+  const factors = shallowRef<readonly FactorView[]>([]);
   const at = (estateId: string, path: string) => `/api/estates/${estateId}/${path}`;
 
   async function loadNotices(estateId: string): Promise<void> {
@@ -62,5 +65,31 @@ export const useHarvestStore = defineStore('harvest', () => {
     await Promise.all([loadTickets(estateId), loadReview(estateId)]);
   }
 
-  return { notices, people, restrictions, tickets, review, loadNotices, loadPeople, loadRestrictions, send, read, loadReview, loadTickets, enter };
+  /** Reads a weighbridge's table back, or enters it when `apply` is set. */
+  async function readTickets(estateId: string, file: z.input<typeof ticketFile>): Promise<TicketReading> {
+    const reading = await http.post<TicketReading>(at(estateId, 'tickets/import'), file);
+    if (file.apply === true) await Promise.all([loadTickets(estateId), loadReview(estateId)]);
+    return reading;
+  }
+
+  async function loadCellar(estateId: string): Promise<void> {
+    const [measured, learned] = await Promise.all([http.get<Listed<CellarResultView>>(at(estateId, 'cellar-results')), http.get<Listed<FactorView>>(at(estateId, 'factors'))]);
+    results.value = measured.items;
+    factors.value = learned.items;
+  }
+
+  async function enterCellar(estateId: string, lotId: string, figures: z.input<typeof newCellarResult>): Promise<void> {
+    await http.post(at(estateId, `lots/${lotId}/cellar-results`), figures);
+    await loadCellar(estateId);
+  }
+
+  async function switchFactor(estateId: string, change: z.input<typeof factorSwitch>): Promise<void> {
+    await http.put(at(estateId, 'factors'), change);
+    await loadCellar(estateId);
+  }
+
+  /** Whether a notice on paper still holds; needs no sign-in. */
+  const noticeState = (code: string): Promise<NoticeState> => http.get<NoticeState>(`/api/notice-state/${code}`);
+
+  return { results, factors, readTickets, loadCellar, enterCellar, switchFactor, noticeState, notices, people, restrictions, tickets, review, loadNotices, loadPeople, loadRestrictions, send, read, loadReview, loadTickets, enter };
 });

@@ -1,7 +1,8 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
-import type { lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
+import type { CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
+import type { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { http } from '../lib/http.ts';
 
 export interface LotPartChange {
@@ -13,6 +14,10 @@ export interface LotPartChange {
 /** Pick lots of one scenario with what is free of each zone, and the tanks. Every write reads the board again: figures of all lots may move. */
 export const useLotsStore = defineStore('lots', () => {
   const board = shallowRef<LotsBoard | null>(null);
+  /** Boards of other scenarios, for laying them side by side. */
+  const compared = shallowRef<readonly LotsBoard[]>([]);
+  const capacities = shallowRef<readonly CapacityView[]>([]);
+  const decisions = shallowRef<readonly DecisionView[]>([]);
   let estate = '';
   const base = () => `/api/estates/${estate}`;
 
@@ -54,6 +59,45 @@ export const useLotsStore = defineStore('lots', () => {
     await load(estate, id);
   }
 
+  async function move(zoneId: string, from: LotView, to: LotView): Promise<void> {
+    await http.post(`${base()}/lot-moves`, { zoneId, fromLotId: from.id, fromVersion: from.version, toLotId: to.id, toVersion: to.version });
+    await again();
+  }
+
+  /** Asks for a proposal and shows it; what is in force stays as it is. */
+  async function suggest(asked: z.input<typeof newSuggestion>): Promise<void> {
+    const { id } = await http.post<{ id: string }>(`${base()}/lot-suggestions`, asked);
+    await load(estate, id);
+  }
+
+  async function applyScenario(scenarioId: string): Promise<void> {
+    await http.post(`${base()}/scenarios/${scenarioId}/apply`);
+    await load(estate);
+  }
+
+  async function removeScenario(scenarioId: string): Promise<void> {
+    await http.delete(`${base()}/scenarios/${scenarioId}`);
+    compared.value = compared.value.filter((one) => one.scenarioId !== scenarioId);
+    await load(estate);
+  }
+
+  async function compare(scenarioIds: readonly string[]): Promise<void> {
+    compared.value = await Promise.all(scenarioIds.map((scenario) => http.get<LotsBoard>(`${base()}/lots`, { query: { scenario } })));
+  }
+
+  async function loadCapacities(estateId: string): Promise<void> {
+    capacities.value = (await http.get<{ items: CapacityView[] }>(`/api/estates/${estateId}/day-capacities`)).items;
+  }
+
+  async function setCapacity(estateId: string, capacity: z.input<typeof dayCapacity>): Promise<void> {
+    await http.put(`/api/estates/${estateId}/day-capacities`, capacity);
+    await loadCapacities(estateId);
+  }
+
+  async function loadDecisions(lotId: string): Promise<void> {
+    decisions.value = (await http.get<{ items: DecisionView[] }>(`${base()}/lots/${lotId}/decisions`)).items;
+  }
+
   async function addTank(tank: z.input<typeof newTank>): Promise<void> {
     await http.post(`${base()}/tanks`, tank);
     await again();
@@ -64,5 +108,5 @@ export const useLotsStore = defineStore('lots', () => {
     await again();
   }
 
-  return { board, load, create, change, setParts, confirm, remove, copyScenario, addTank, retireTank };
+  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, loadDecisions, addTank, retireTank };
 });

@@ -15,9 +15,10 @@ export const useRipenessStore = defineStore('ripeness', () => {
     blocks.value = items.filter((block) => block.zoning !== null);
   }
 
-  async function load(estateId: string, blockId: string): Promise<void> {
+  /** `knownOn`: as it stood on that day; empty for now. */
+  async function load(estateId: string, blockId: string, knownOn = ''): Promise<void> {
     view.value = null;
-    view.value = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`);
+    view.value = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn } });
   }
 
   return { blocks, view, loadBlocks, load };

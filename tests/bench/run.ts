@@ -1,5 +1,6 @@
 /**
  * npm run bench -- [--verdict | --zones] [--count N] [--seed N]        quality on simulated blocks, a line of JSON a row
+ * npm run bench -- --ripening [--count N] [--seed N]                  do forecasts hold as they say, how often is noise called a change
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
  * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
@@ -13,10 +14,12 @@ import { benchSync } from './benchSync.ts';
 import { benchVerdict } from './benchVerdict.ts';
 import { benchZones } from './benchZones.ts';
 import { runCoverage } from './coverage.ts';
+import { runRipening } from './ripening.ts';
 
 const { values } = parseArgs({
   options: {
     verdict: { type: 'boolean', default: false },
+    ripening: { type: 'boolean', default: false },
     zones: { type: 'boolean', default: false },
     sync: { type: 'boolean', default: false },
     coverage: { type: 'boolean', default: false },
@@ -37,6 +40,7 @@ if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), 
 else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);
+else if (values.ripening) for (const row of ripeningRows(Number(values.count ?? 2000))) print(row);
 else if (values.plan) for (const row of benchPlan(Number(values.runs))) print(row);
 else print(await benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? [] }));
 
@@ -44,4 +48,9 @@ else print(await benchPipeline({ runs: Number(values.runs), cellSizeM: Number(va
 function coverageRows(seasons: number): object[] {
   const { settings, summary } = runCoverage({ seasons, seed });
   return [...settings, ...summary];
+}
+
+function ripeningRows(seasons: number): object[] {
+  const { forecast, falseAlarms, backTest, bend } = runRipening({ seasons, seed });
+  return [...forecast, ...falseAlarms, ...backTest, ...bend];
 }

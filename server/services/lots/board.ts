@@ -5,7 +5,8 @@ import { isBearing } from '../../ground/blockVines.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
 import { loadBoardGround, type BoardBlock, type BoardGround } from './boardGround.ts';
-import { summariseLot, type LotShare } from './summariseLot.ts';
+import { usedFactors } from './usedFactors.ts';
+import { summariseLot, withoutZone, type LotShare } from './summariseLot.ts';
 import { boardConfidence, figureOf } from './zoneOutlook.ts';
 
 /** The lots of a scenario, every zone with what is free of it, and the tanks. Without a scenario: the live one of the season. */
@@ -13,9 +14,10 @@ export async function lotsBoard(access: Access, options: { scenarioId: string | 
   const scenario = await findScenario(access, options);
   const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
   const tanks = await listTanks(access);
-  const ground = await loadBoardGround(access.estateId, scenario);
+  const ground = await loadBoardGround(access.estateId, scenario, await usedFactors(access.estateId));
   return {
     scenarioId: scenario.id,
+    suggestion: scenario.suggestion as LotsBoard['suggestion'],
     scenarios: scenarios.map(({ id, name, isLive }) => ({ id, name, isLive })),
     seasonId: scenario.seasonId,
     confidence: boardConfidence,
@@ -101,7 +103,9 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): LotView
     pickOn: lot.pickOn,
     tankId: lot.tankId,
     version: lot.version,
-    lines: shares.map(({ block, zone, outlook, vines, bearing, share, rowIds }) => ({
+    crew: lot.crew,
+    lines: shares.map(({ block, zone, outlook, vines, bearing, share, rowIds }, at) => ({
+      without: withoutZone(shares, at),
       rowIds,
       zoneId: zone.id,
       blockId: block.ground.block.id,
@@ -115,7 +119,7 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): LotView
       areaHa: (share * zone.areaM2) / 10_000,
       tonnes: figureOf({ ...outlook.tonnes, value: outlook.tonnes.value * share, standardError: outlook.tonnes.standardError * share }, { n: null, kind: 'estimated' }),
     })),
-    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null }),
+    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null, factors: ground.factors }),
   };
 }
 

@@ -1,7 +1,7 @@
 import type { TransactionOrKnex } from 'objection';
 import { vineIndex } from '../../../shared/geo/vines.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
-import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun } from '../../models/LotRowRun.ts';
@@ -9,7 +9,7 @@ import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
-import { zoneOutlooks, type ZoneOutlook } from './zoneOutlook.ts';
+import { zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
 /** A block with its live zones, what to expect of them, and which lot each vine is in. */
 export interface BoardBlock {
@@ -17,6 +17,8 @@ export interface BoardBlock {
   zoneOf: Uint8Array;
   zones: Zone[];
   outlooks: ZoneOutlook[];
+  /** Of the season. */
+  readings: ZonedReading[];
   /** Per vine: index into `lots`, or -1 while free. */
   lotOf: Int16Array;
 }
@@ -25,10 +27,12 @@ export interface BoardGround {
   season: Season;
   lots: Lot[];
   blocks: BoardBlock[];
+  factors: UsedFactors;
+  measures: MeasureRecord[];
 }
 
-/** Loads everything that the lots of a scenario are made of: each live zoning of the season, its fruit, and the lots' vines. */
-export async function loadBoardGround(estateId: string, scenario: { id: string; seasonId: string }): Promise<BoardGround> {
+/** Loads everything that the lots of a scenario are made of: each live zoning of the season, its fruit (as known at `until`), and the lots' vines. */
+export async function loadBoardGround(estateId: string, scenario: { id: string; seasonId: string }, factors: UsedFactors, until: Date | null = null): Promise<BoardGround> {
   const season = await Season.query().findOne({ estateId, id: scenario.seasonId }).throwIfNotFound();
   const zonings = await Zoning.query().where({ estateId, seasonId: season.id, state: 'live' });
   const zones = await Zone.query().where({ estateId }).whereIn('zoningId', zonings.map((zoning) => zoning.id)).orderBy('number').select('id', 'zoningId', 'number', 'name', 'areaM2');
@@ -40,13 +44,13 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
       const ground = await loadBlockVines(estateId, zoning.blockId);
       const zoneOf = zonesOfVines(ground, zoning);
       const own = zones.filter((zone) => zone.zoningId === zoning.id);
-      const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id });
-      const outlooks = zoneOutlooks({ ground, zoneOf, zoneNumbers: own.map((zone) => zone.number), readings, measures, season });
-      return { ground, zoneOf, zones: own, outlooks, lotOf: lotsOfVines(ground, lots, runs) };
+      const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id, ...(until ? { until } : {}) });
+      const outlooks = zoneOutlooks({ ground, zoneOf, zoneNumbers: own.map((zone) => zone.number), readings, measures, season, factors });
+      return { ground, zoneOf, zones: own, outlooks, readings, lotOf: lotsOfVines(ground, lots, runs) };
     }),
   );
   blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name));
-  return { season, lots, blocks };
+  return { season, lots, blocks, factors, measures };
 }
 
 interface Run {

@@ -1,7 +1,7 @@
 import type { z } from 'zod';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
-import type { lotChange, lotParts, newLot, newScenario, newTank, tankChange } from '../../../shared/contracts/lots.ts';
+import type { lotChange, lotParts, newLot, newTank, tankChange, zoneMove } from '../../../shared/contracts/lots.ts';
 import type { Transaction } from 'objection';
 import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Stale, Unusable } from '../../errors.ts';
@@ -11,11 +11,11 @@ import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
-import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { findScenario } from './board.ts';
+import { boardOfLot, keepDecision } from './decisions.ts';
 import { runsOf } from './boardGround.ts';
 
 export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
@@ -51,7 +51,25 @@ export async function setLotParts(access: Access, lotId: string, input: z.infer<
   });
 }
 
-async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }): Promise<void> {
+/** Moves what one lot holds of a zone into another, in one step: it is in both at no time, and never in none. */
+export async function moveZone(access: Access, input: z.infer<typeof zoneMove>): Promise<void> {
+  await Lot.transaction(async (trx) => {
+    const from = await lockLot(trx, access, input.fromLotId, input.fromVersion);
+    const to = await lockLot(trx, access, input.toLotId, input.toVersion);
+    if (from.scenarioId !== to.scenarioId) throw new Unusable('otherScenario', 'These lots belong to different what-ifs. Move zones inside one.');
+    const firm = [from, to].find(({ state }) => state !== 'draft');
+    if (firm) throw new Unusable('lotStands', `The lot "${firm.name}" is confirmed; its zones stand as they are.`);
+    const parts = await LotPart.query(trx).where({ estateId: access.estateId, lotId: from.id, zoneId: input.zoneId });
+    if (parts.length === 0) throw new Unusable('notInLot', `The lot "${from.name}" holds nothing of this zone.`);
+    await LotPart.query(trx).where({ estateId: access.estateId }).whereIn('id', parts.map(({ id }) => id)).patch({ lotId: to.id });
+    await from.$query(trx).patch({ version: from.version + 1 });
+    await to.$query(trx).patch({ version: to.version + 1 });
+    await writeAudit(trx, access, { action: 'lots.moveZone', subjectType: 'lot', subjectId: to.id, subjectName: to.name, before: { lot: from.name }, after: { lot: to.name, zones: parts.map(({ zoneNumber }) => zoneNumber) } });
+  });
+}
+
+/** Puts a zone in force, or rows of it, into a lot; refused when a vine of it is in another. */
+export async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }): Promise<void> {
   const zone = await Zone.query(trx).findOne({ estateId: access.estateId, id: part.zoneId }).select('id', 'zoningId', 'number', 'name').throwIfNotFound();
   const zoning = await Zoning.query(trx).findOne({ estateId: access.estateId, id: zone.zoningId }).throwIfNotFound();
   if (zoning.state !== 'live') throw new Unusable('zoneNotLive', `Zone ${zone.number} belongs to zones that are not in force. Choose it from the zones in force.`);
@@ -78,12 +96,14 @@ async function requireFree(trx: Transaction, access: Access, lot: Lot, part: { r
 /** Confirms a lot and its date. Whoever may only propose leaves it to another, unless nobody else can. */
 export async function confirmLot(access: Access, lotId: string, version: number, now: Date): Promise<void> {
   if (reachOf(access.roles, 'lots.confirm') !== 'do') throw new NotAllowed('You may propose this lot; the winemaker or the owner confirms it.');
+  const shown = await boardOfLot(access, lotId, now);
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
     if (lot.pickOn === null) throw new Unusable('noPickDate', 'Set a pick date before you confirm the lot.');
     if ((await LotPart.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) === 0) throw new Unusable('emptyLot', 'Put at least one zone in the lot before you confirm it.');
     await requireNoPickRestriction(trx, access, lotId, lot.pickOn);
     await lot.$query(trx).patch({ state: 'confirmed', confirmedBy: access.personId, confirmedAt: now, version: lot.version + 1 });
+    await keepDecision(trx, access, { lotId, kind: 'confirm', shown, now });
     await writeAudit(trx, access, { action: 'lots.confirm', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, after: { pickOn: lot.pickOn } });
   });
 }
@@ -93,24 +113,6 @@ export async function deleteLot(access: Access, lotId: string, version: number):
     const lot = await lockLot(trx, access, lotId, version);
     await lot.$query(trx).delete();
     await writeAudit(trx, access, { action: 'lots.delete', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { wineType: lot.wineType, pickOn: lot.pickOn } });
-  });
-}
-
-/** Copies a scenario with its lots: a what-if that changes nothing live. */
-export async function copyScenario(access: Access, input: z.infer<typeof newScenario>): Promise<{ id: string }> {
-  return Scenario.transaction(async (trx) => {
-    const from = await Scenario.query(trx).findOne({ estateId: access.estateId, id: input.copyOf }).throwIfNotFound();
-    const copy = await Scenario.query(trx).insert({ estateId: access.estateId, seasonId: from.seasonId, name: input.name, isLive: false, createdBy: access.personId });
-    for (const lot of await Lot.query(trx).where({ estateId: access.estateId, scenarioId: from.id })) {
-      const made = await Lot.query(trx).insert({ estateId: access.estateId, scenarioId: copy.id, seasonId: lot.seasonId, name: lot.name, wineType: lot.wineType, pickOn: lot.pickOn, tankId: lot.tankId, createdBy: access.personId, createdAt: lot.createdAt });
-      for (const part of await LotPart.query(trx).where({ estateId: access.estateId, lotId: lot.id })) {
-        const { id: partId, ...facts } = part.toJSON() as LotPart;
-        const copied = await LotPart.query(trx).insert({ ...facts, lotId: made.id });
-        await trx.raw('insert into lot_row_runs (estate_id, scenario_id, lot_part_id, row_id, vines) select estate_id, ?, ?, row_id, vines from lot_row_runs where estate_id = ? and lot_part_id = ?', [copy.id, copied.id, access.estateId, partId]);
-      }
-    }
-    await writeAudit(trx, access, { action: 'lots.copyScenario', subjectType: 'scenario', subjectId: copy.id, subjectName: input.name, after: { copyOf: from.id } });
-    return { id: copy.id };
   });
 }
 

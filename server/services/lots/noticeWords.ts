@@ -56,6 +56,12 @@ function wordOf(texts: Texts, what: NoticeDifference['what']): string {
   return words[what];
 }
 
-function fill(template: string, facts: Record<string, string | number>): string {
+/** Words around a notice on paper. */
+export function sheetWords(language: string): { title: string; scan: string; void: string } {
+  const texts: Texts = noticeTexts[language as keyof typeof noticeTexts] ?? noticeTexts.en;
+  return { title: texts.title, scan: texts.scan, void: texts.void };
+}
+
+export function fill(template: string, facts: Record<string, string | number>): string {
   return template.replace(/\{(\w+)\}/g, (place, key: string) => String(facts[key] ?? place));
 }

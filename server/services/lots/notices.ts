@@ -2,9 +2,10 @@ import type { Transaction } from 'objection';
 import { may } from '../../../shared/catalog/permissions.ts';
 import type { Role } from '../../../shared/catalog/roles.ts';
 import type { LotView } from '../../../shared/contracts/lots.ts';
-import type { NewNotice, NoticeBody, NoticeView } from '../../../shared/contracts/notices.ts';
+import type { NewNotice, NoticeBody, NoticeState, NoticeView } from '../../../shared/contracts/notices.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
+import { noticeSheet } from '../../exporters/noticeSheet.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -15,8 +16,9 @@ import { Person } from '../../models/Person.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { lotsBoard } from './board.ts';
+import { keepDecision, shownOf } from './decisions.ts';
 import { requireNoPickRestriction } from './changeLots.ts';
-import { differencesBetween, noticeText, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
+import { differencesBetween, fill, noticeText, sheetWords, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
 
 interface Recipient {
   person: Person;
@@ -41,6 +43,7 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
     const newest = await PickNotice.query(trx).where({ estateId }).max('number as number').first();
     if (before) await before.$query(trx).patch({ voidAt: options.now });
     const notice = await PickNotice.query(trx).insert({ estateId, lotId, number: (newest?.number ?? 0) + 1, replacesNumber: before?.number ?? null, body, sentBy: access.personId, sentAt: options.now });
+    await keepDecision(trx, access, { lotId, kind: 'notice', shown: shownOf(board, lotId), now: options.now });
     await NoticeReader.query(trx).insert(recipients.map(({ person }) => ({ noticeId: notice.id, personId: person.id })));
     await mailNotice(trx, { access, estateName: estate.name, notice, body, before: before ? (before.body as NoticeBody) : null, recipients, publicUrl: options.publicUrl });
     await writeAudit(trx, access, { action: 'notices.send', subjectType: 'notice', subjectId: notice.id, subjectName: `${lot.name} ${notice.number}`, after: { number: notice.number, replaces: before?.number ?? null, people: input.people.length } });
@@ -125,6 +128,39 @@ export async function listNotices(access: Access): Promise<NoticeView[]> {
         readers: own(notice).map((reader) => ({ personId: reader.personId, name: nameOf(reader.personId), readAt: reader.readAt?.toISOString() ?? null })), mine: own(notice).some((reader) => reader.personId === personId),
       };
     });
+}
+
+/** A notice on paper in the language of whoever prints it; one that was replaced says so, and its code does too. */
+export async function printNotice(access: Access, noticeId: string, options: { publicUrl: string; now: Date }): Promise<{ name: string; body: Buffer }> {
+  const notice = await PickNotice.query().findOne({ estateId: access.estateId, id: noticeId }).throwIfNotFound();
+  const seesLots = may(access.roles, 'lots.see', 'read');
+  const isReader = (await NoticeReader.query().where({ noticeId, personId: access.personId }).resultSize()) > 0;
+  if (!seesLots && !isReader) throw new Missing('This notice is not addressed to you.');
+  const [person, estate] = await Promise.all([Person.query().findById(access.personId).throwIfNotFound(), Estate.query().findById(access.estateId).throwIfNotFound()]);
+  const replacedBy = await replacementOf(notice);
+  const body = notice.body as NoticeBody;
+  const texts = sheetWords(person.language);
+  const text = noticeText(seesLots ? body : withoutTonnes(body), { language: person.language, replacesNumber: notice.replacesNumber, differences: [] });
+  const title = fill(texts.title, { number: notice.number });
+  return {
+    name: `${title}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'),
+    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: notice.voidAt === null ? null : fill(texts.void, { number: replacedBy ?? '' }), now: options.now }),
+  };
+}
+
+/** What the code on a printed notice leads to, for anybody who holds the paper: whether its number still holds, and nothing else. */
+export async function noticeState(code: string): Promise<NoticeState> {
+  const notice = await PickNotice.query().findOne({ code });
+  if (!notice) throw new Missing('No pick notice has this code. Ask whoever gave you the paper.');
+  const estate = await Estate.query().findById(notice.estateId).throwIfNotFound();
+  return { number: notice.number, estateName: estate.name, isVoid: notice.voidAt !== null, replacedBy: await replacementOf(notice), pickOn: notice.voidAt === null ? (notice.body as NoticeBody).pickOn : null };
+}
+
+/** Number of the notice in force for the same lot, followed through all replacements; null while this one holds. */
+async function replacementOf(notice: PickNotice): Promise<number | null> {
+  if (notice.voidAt === null) return null;
+  const newest = await PickNotice.query().where({ estateId: notice.estateId, lotId: notice.lotId }).orderBy('number', 'desc').first();
+  return newest && newest.number !== notice.number ? newest.number : null;
 }
 
 /** Notes that the person has read a notice addressed to them; repeating it keeps the first time. */

@@ -1,13 +1,15 @@
 import { potentialAlcohol } from '../../../shared/cellar/alcohol.ts';
-import { lotLikeness } from '../../../shared/cellar/lotLikeness.ts';
+import { nextLot } from '../../../shared/cellar/learnFactor.ts';
+import { lotLikeness, type LikenessPart } from '../../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../../shared/cellar/lots.ts';
 import { fitTank, litreHints, litresFrom } from '../../../shared/cellar/tankFit.ts';
 import type { LotSummary, TankView, WineType } from '../../../shared/contracts/lots.ts';
+import { combineLinearly } from '../../../shared/sampling/combineEstimates.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import { criticalT } from '../../../shared/sampling/quantiles.ts';
 import type { Zone } from '../../models/Zone.ts';
 import type { BoardBlock } from './boardGround.ts';
-import { boardConfidence, figureOf, type ZoneOutlook } from './zoneOutlook.ts';
+import { boardConfidence, figureOf, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
 /** Part of a zone in a lot; `share` is of its bearing vines. */
 export interface LotShare {
@@ -24,14 +26,16 @@ export interface LotShare {
 type MeasuredCode = 'brix' | 'ph' | 'ta';
 
 /** What a lot is expected to be: area, tonnes, composition, alcohol if all sugar ferments, litres and whether they fit. */
-export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank: TankView | null }): LotSummary {
+export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank: TankView | null; factors: UsedFactors }): LotSummary {
   const tonnes = shares.length === 0 ? null : lotTonnes(shares.map((share) => ({ tonnes: tonnesOf(share) })));
   const brix = valueOf(shares, 'brix', lotValue);
   const ph = valueOf(shares, 'ph', lotPh);
   const ta = valueOf(shares, 'ta', lotValue);
-  const mustL = tonnes && litresFrom(tonnes, hintOf(how.wineType === 'red' ? 'redMust' : 'whiteJuice'));
-  const wineL = tonnes && litresFrom(tonnes, hintOf('finishedWine'));
-  const brixHalf = brix === null ? null : criticalT(boardConfidence, Math.max(1, brix.value.df)) * brix.value.standardError;
+  const mustL = tonnes && litresFrom(tonnes, mustPerTonne(how.wineType, how.factors));
+  const wineL = tonnes && litresFrom(tonnes, winePerTonne(how.wineType, how.factors));
+  const tankBrix = brix && inTank(brix.value, shares, how.factors);
+  const told = tankBrix?.brix ?? brix?.value ?? null;
+  const brixHalf = told === null ? null : criticalT(boardConfidence, Math.max(1, told.df)) * told.standardError;
   return {
     areaHa: sum(shares, ({ share, zone }) => (share * zone.areaM2) / 10_000),
     vines: sum(shares, ({ vines }) => vines),
@@ -43,7 +47,9 @@ export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank
     phViaHydrogen: ph ? ph.value.viaHydrogen : null,
     ta: ta && figureOf(ta.value, { n: ta.n, kind: 'measured' }),
     weighting: brix?.value.weighting ?? null,
-    alcohol: brix === null || brixHalf === null || !Number.isFinite(brixHalf) ? null : potentialAlcohol({ lower: brix.value.value - brixHalf, value: brix.value.value, upper: brix.value.value + brixHalf }, 'brixFactor'),
+    tankBrix: tankBrix && { figure: figureOf(tankBrix.brix, { n: tankBrix.n, kind: 'estimated' }), offset: tankBrix.offset },
+    litreSource: { must: how.factors.mustL.get(how.wineType)?.n ?? null, wine: how.factors.wineL.get(how.wineType)?.n ?? null },
+    alcohol: told === null || brixHalf === null || !Number.isFinite(brixHalf) ? null : potentialAlcohol({ lower: told.value - brixHalf, value: told.value, upper: told.value + brixHalf }, 'brixFactor'),
     mustL: mustL && figureOf(mustL, { n: null, kind: 'estimated' }),
     wineL: wineL && figureOf(wineL, { n: null, kind: 'estimated' }),
     betweenShare: likeness(shares),
@@ -79,9 +85,41 @@ function dominatingPart(shares: LotShare[]): string | null {
 }
 
 function likeness(shares: LotShare[]): number | null {
+  const parts = likenessParts(shares);
+  return parts && lotLikeness(parts).betweenShare;
+}
+
+function likenessParts(shares: LotShare[]): LikenessPart[] | null {
   const known = shares.filter((share) => share.share > 0 && isKnown(share, 'brix'));
   if (known.length < 2) return null;
-  return lotLikeness(known.map((share) => ({ zone: share.zone.id, weight: tonnesOf(share).value, mean: share.outlook.latest.brix!.estimate, sd: share.outlook.latest.brix!.sd }))).betweenShare;
+  return known.map((share) => ({ zone: share.zone.id, weight: tonnesOf(share).value, mean: share.outlook.latest.brix!.estimate, sd: share.outlook.latest.brix!.sd }));
+}
+
+/** What the lot would be without one of its zones: °Brix and how much of its spread lies between zones; null when that cannot be told. */
+export function withoutZone(shares: LotShare[], at: number): { brix: number; betweenShare: number } | null {
+  const parts = likenessParts(shares);
+  if (parts === null) return null;
+  const found = lotLikeness(parts).without.find(({ zone }) => zone === shares[at]!.zone.id);
+  return found ? { brix: found.mean, betweenShare: found.betweenShare } : null;
+}
+
+/** Litres of must, and of wine, a tonne: learned where that is switched on, else the custom of the trade. */
+export function mustPerTonne(wineType: string, factors: UsedFactors): Estimate {
+  const learned = factors.mustL.get(wineType);
+  return learned ? nextLot(learned) : hintOf(wineType === 'red' ? 'redMust' : 'whiteJuice');
+}
+
+function winePerTonne(wineType: string, factors: UsedFactors): Estimate {
+  const learned = factors.wineL.get(wineType);
+  return learned ? nextLot(learned) : hintOf('finishedWine');
+}
+
+/** °Brix as the tank would read it, by the offset learned for the variety; null while it is off or varieties are mixed. */
+function inTank(brix: Estimate, shares: LotShare[], factors: UsedFactors): { brix: Estimate; offset: number; n: number } | null {
+  const [variety, ...others] = new Set(shares.map(({ block }) => block.ground.block.variety));
+  const learned = variety === undefined || others.length > 0 ? undefined : factors.tankOffset.get(variety);
+  if (!learned) return null;
+  return { brix: combineLinearly([{ factor: 1, estimate: brix }, { factor: -1, estimate: nextLot(learned) }]), offset: learned.mean, n: learned.n };
 }
 
 /** Middle of the customary range, with a standard error that puts its ends at two of them. */

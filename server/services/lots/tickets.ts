@@ -1,12 +1,16 @@
-import { kgPerUnit, type MassUnit, type NewTicket, type TicketSplit, type TicketView } from '../../../shared/contracts/tickets.ts';
+import type { z } from 'zod';
+import { readTickets } from '../../../shared/cellar/ticketTable.ts';
+import { kgPerUnit, type MassUnit, type NewTicket, type ticketFile, type TicketReading, type TicketSplit, type TicketView } from '../../../shared/contracts/tickets.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
+import { Estate } from '../../models/Estate.ts';
 import { Lot } from '../../models/Lot.ts';
 import { Person } from '../../models/Person.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
+import { findScenario } from './board.ts';
 
 /** Kilograms by which a split may miss the net weight: rounding of bins. */
 const splitToleranceKg = 1;
@@ -36,6 +40,38 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     return { id: ticket.id };
   });
 }
+
+/** Reads a weighbridge's table back; enters all of it when asked to and nothing is left to settle. */
+export async function importTickets(access: Access, file: z.infer<typeof ticketFile>, options: { today: string; now: Date }): Promise<TicketReading> {
+  const { estateId } = access;
+  const scenario = await findScenario(access, { scenarioId: null, today: options.today });
+  const [lots, known, estate] = await Promise.all([
+    Lot.query().where({ estateId, scenarioId: scenario.id }).select('id', 'name'),
+    ScaleTicket.query().where({ estateId }).select('ticketNo'),
+    Estate.query().findById(estateId).throwIfNotFound(),
+  ]);
+  const read = readTickets(file.text, { lots: lots.map(({ id, name }) => ({ id, name })), known: known.map(({ ticketNo }) => ticketNo) }, file);
+  const view: TicketReading = {
+    tickets: read.tickets.map(({ line, ticketNo, lotName, gross, tare, unit, day, netOnly }) => ({ line, ticketNo, lotName, netKg: (gross - tare) * kgPerUnit[unit], day, netOnly })),
+    questions: [...read.questions], problems: read.problems.slice(0, shownProblems), kept: 0,
+  };
+  if (!file.apply) return view;
+  if (read.questions.length > 0) throw new Clash('tableQuestions', 'Answer what is asked about the table first; nothing was kept.');
+  if (read.problems.length > 0 || read.tickets.length === 0) throw new Unusable('tableProblems', `${read.problems.length} lines of the table cannot be used; nothing was kept. Correct them and read it again.`);
+  await ScaleTicket.transaction(async (trx) => {
+    const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time, netOnly }) => ({
+      estateId, lotId, ticketNo, grossKg: gross * kgPerUnit[unit], tareKg: tare * kgPerUnit[unit], unitTyped: unit, split: [], corrects: null, enteredBy: access.personId, enteredAt: options.now,
+      note: netOnly ? 'net weight only' : '',
+      weighedAt: ScaleTicket.raw('(?::timestamp at time zone ?)', [`${day} ${time}`, estate.timeZone]),
+    }));
+    await ScaleTicket.query(trx).insert(rows as never);
+    await Lot.query(trx).where({ estateId }).whereIn('id', read.tickets.map(({ lotId }) => lotId)).whereNot({ state: 'picked' }).patch({ state: 'picked', version: Lot.raw('version + 1') as never });
+    await writeAudit(trx, access, { action: 'tickets.import', subjectType: 'ticket', subjectId: scenario.id, subjectName: `${read.tickets.length}`, after: { numbers: read.tickets.map(({ ticketNo }) => ticketNo) } });
+  });
+  return { ...view, kept: read.tickets.length };
+}
+
+const shownProblems = 20;
 
 function requireSplitAddsUp(split: readonly TicketSplit[], netKg: number): void {
   if (split.length === 0) return;

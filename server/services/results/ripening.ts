@@ -3,12 +3,18 @@ import { groupBy } from '../../../shared/groupBy.ts';
 import { backTestSteps, type BackTestStep } from '../../../shared/ripening/backTest.ts';
 import { findBend } from '../../../shared/ripening/bend.ts';
 import { forecastDay } from '../../../shared/ripening/forecast.ts';
+import { loadingChange } from '../../../shared/ripening/sugarPerBerry.ts';
+import { visitFlags } from '../../../shared/ripening/visitFlags.ts';
+import { heatSince, weatherBefore } from '../../../shared/ripening/visitWeather.ts';
+import type { WeatherDay } from '../../../shared/ripening/weatherTable.ts';
 import { fitTrend, type Trend, type VisitPoint } from '../../../shared/ripening/trend.ts';
 import { changeBetween, changeOfSameVines, type Change } from '../../../shared/sampling/change.ts';
+import type { Estimate } from '../../../shared/sampling/precision.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import type { ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { loadZoneReadings, viewResults } from './zoneResults.ts';
 
@@ -20,16 +26,63 @@ const fewSteps = 5;
 const sameShare = 0.8;
 const leastPairs = 3;
 
-/** How each zone of a block ripens by the zones in force: series, change in words, trend and a forecast that carries its record. */
-export async function blockRipening(access: Access, blockId: string): Promise<RipeningView> {
-  const zoning = await Zoning.query().where({ estateId: access.estateId, blockId, state: 'live' }).orderBy('publishedAt', 'desc').first();
-  if (!zoning) throw new Missing('This block has no zones in force. Publish its zones first; ripeness is followed by zone.');
-  const loaded = await loadZoneReadings(access, zoning.id);
+/**
+ * How each zone of a block ripens by the zones in force: series, change in words, trend and a forecast that carries its
+ * record. With `knownOn` as it stood at the end of that day: its zones, and what had been received by then.
+ */
+export async function blockRipening(access: Access, blockId: string, options: { today: string; knownOn?: string | null }): Promise<RipeningView> {
+  const until = options.knownOn ? new Date(`${options.knownOn}T23:59:59.999Z`) : null;
+  const zoning = await zoningThen(access.estateId, blockId, until);
+  const loaded = await loadZoneReadings(access, zoning.id, until ? { until } : {});
   const results = viewResults(loaded);
+  const weather = await weatherUntil(access.estateId, until);
   const made = loaded.measures.flatMap((measure) =>
     results.zones.map((zone) => seriesOf(measure, { zone: zone.number, values: results.values, readings: loaded.readings })).filter((made) => made !== null),
   );
-  return { ...results, series: made.map(({ series }) => series), record: recordsOf(made), degreeDays: null };
+  return {
+    ...results,
+    series: made.map(({ series }) => series),
+    record: recordsOf(made),
+    knownOn: options.knownOn ?? null,
+    conditions: results.visits.map(({ on }) => conditionsOf(on, loaded.readings, weather)),
+    heat: heatSince(weather, { south: loaded.ground.block.epsg >= firstSouthernZone, until: options.knownOn ?? options.today }),
+    loading: results.zones.flatMap((zone) => loadingOf(zone.number, results) ?? []),
+  };
+}
+
+/** UTM zones of the southern half are numbered from 32701 on. */
+const firstSouthernZone = 32_700;
+
+async function zoningThen(estateId: string, blockId: string, until: Date | null): Promise<Zoning> {
+  const query = Zoning.query().where({ estateId, blockId }).orderBy('publishedAt', 'desc');
+  const zoning = await (until === null ? query.where({ state: 'live' }) : query.where('publishedAt', '<=', until)).first();
+  if (zoning) return zoning;
+  throw new Missing(until === null ? 'This block has no zones in force. Publish its zones first; ripeness is followed by zone.' : 'This block had no zones in force on that day. Choose a later day.');
+}
+
+async function weatherUntil(estateId: string, until: Date | null): Promise<WeatherDay[]> {
+  const query = WeatherDayRecord.query().where({ estateId }).orderBy('day');
+  return until === null ? query : query.where('enteredAt', '<=', until);
+}
+
+function conditionsOf(visit: string, readings: readonly ZonedReading[], weather: readonly WeatherDay[]): RipeningView['conditions'][number] {
+  const own = readings.filter((reading) => reading.visit === visit && reading.excludedReason === null);
+  const wetReadings = own.filter(({ wetFruit }) => wetFruit).length;
+  const before = weatherBefore(weather, visit);
+  return { visit, ...before, wetReadings, flags: visitFlags({ ...before, wetFruit: wetReadings > 0 }) };
+}
+
+/** What happened to the sugar in a berry between the last two visits that weighed berries and measured sugar. */
+function loadingOf(zone: number, { values }: { values: readonly ZoneResult[] }): RipeningView['loading'][number] | null {
+  const of = (measure: string, visit: string) => values.find((value) => value.zone === zone && value.measure === measure && value.visit === visit) ?? null;
+  const both = [...new Set(values.map(({ visit }) => visit))].sort().filter((visit) => of('brix', visit) !== null && of('berryWeight', visit) !== null);
+  const [from, to] = both.slice(-2);
+  if (from === undefined || to === undefined) return null;
+  const state = (visit: string) => ({ brix: asEstimate(of('brix', visit)!), berryWeightG: asEstimate(of('berryWeight', visit)!) });
+  const { confidence } = of('brix', to)!;
+  const change = loadingChange(state(from), state(to), confidence);
+  const told = (half: number) => (Number.isNaN(half) ? null : half);
+  return { zone, from, to, word: change.word, confidence, sugarMg: change.sugarMg.value, sugarHalfWidth: told(change.sugarMg.halfWidth), brix: change.brix.value, berryWeightG: change.berryWeightG.value };
 }
 
 interface Made {
@@ -74,8 +127,11 @@ function changeSince(own: ZoneResult[], readings: ZonedReading[]): VisitChange |
 }
 
 function betweenMeans(before: ZoneResult, after: ZoneResult): Change {
-  const estimate = ({ mean, standardError, df }: ZoneResult) => ({ value: mean, standardError: standardError ?? Number.NaN, df: df ?? (standardError === null ? 0 : Infinity) });
-  return changeBetween(estimate(before), estimate(after), after.confidence);
+  return changeBetween(asEstimate(before), asEstimate(after), after.confidence);
+}
+
+function asEstimate({ mean, standardError, df }: ZoneResult): Estimate {
+  return { value: mean, standardError: standardError ?? Number.NaN, df: df ?? (standardError === null ? 0 : Infinity) };
 }
 
 function valuesByVine(readings: ZonedReading[], visit: string): Map<string, number> {

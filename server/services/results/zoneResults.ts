@@ -31,13 +31,13 @@ export interface ZoneReadings {
 }
 
 /** Everything the results of a zoning are computed from. */
-export async function loadZoneReadings(access: Access, zoningId: string, options: { seasonId?: string } = {}): Promise<ZoneReadings> {
+export async function loadZoneReadings(access: Access, zoningId: string, options: { seasonId?: string; until?: Date } = {}): Promise<ZoneReadings> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
   const zoneOf = zonesOfVines(ground, zoning);
   const zones = await Zone.query().where({ estateId: access.estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'areaM2');
   const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
-  const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId });
+  const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId, ...(options.until ? { until: options.until } : {}) });
   const measured = measures.filter((measure) => readings.some((reading) => reading.measureCode === measure.code));
   return { zoning, ground, zones, zoneOf, measures: measured, readings, bearing: countBearing(ground, zoneOf) };
 }

@@ -1,0 +1,92 @@
+import type { ReviewView } from '../../../shared/contracts/tickets.ts';
+import { closePage, innerWidth, margin, openPage, paragraph, printable, faint } from './reportPage.ts';
+import { seasonLetterTexts, type LetterLanguage } from './seasonLetterTexts.ts';
+
+export interface SeasonLetter {
+  language: LetterLanguage;
+  size: 'A4' | 'Letter';
+  units: 'metric' | 'us';
+  now: Date;
+  timeZone: string;
+  estateName: string;
+  seasonName: string;
+  block: ReviewView['blocks'][number];
+  zones: ReviewView['zones'];
+  errorParts: ReviewView['errorParts'];
+}
+
+const shortTons = 1.1023113;
+const tonsPerAcre = 0.44609;
+/** Fewer or more readings than this share of what was needed are worth a word. */
+const worthAWord = 0.15;
+
+/** Half a page on a block: what was expected, what came, what it cost to know, what to do less of. */
+export async function seasonLetter(letter: SeasonLetter): Promise<Buffer> {
+  const texts = seasonLetterTexts[letter.language];
+  const title = filled(texts.title, { block: letter.block.blockName });
+  const page = openPage({ size: letter.size, title, at: letter.now });
+  page.font('bold').fontSize(18).text(printable(title), margin, margin).font('plain');
+  page.fontSize(9).fillColor(faint).text(printable(filled(texts.line, { estate: letter.estateName, season: letter.seasonName, day: dayText(letter, letter.now) })), { width: innerWidth(page) });
+  page.moveDown(0.6);
+  for (const sentence of letterSentences(letter)) {
+    paragraph(page, sentence);
+    page.moveDown(0.35);
+  }
+  page.moveDown(0.8).fontSize(8).fillColor(faint).text(printable(texts.caution), margin, page.y, { width: innerWidth(page) });
+  return closePage(page);
+}
+
+/** The letter's sentences in order. */
+export function letterSentences(letter: SeasonLetter): string[] {
+  const texts = seasonLetterTexts[letter.language];
+  const { block } = letter;
+  const said = [...weighedSentences(letter), ...block.measures.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: texts.measure[measure.measure as keyof typeof texts.measure], difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
+  if (block.zones > 1 && block.lots === 1) said.push(texts.oneLot);
+  said.push(filled(texts.cost, { hours: figure(letter, block.hours, 0), readings: figure(letter, block.readings, 0) }));
+  if (block.sugar) {
+    const { taken, needed } = block.sugar;
+    said.push(filled(taken > needed * (1 + worthAWord) ? texts.less : taken < needed * (1 - worthAWord) ? texts.more : texts.right, { taken, needed }));
+  }
+  return said;
+}
+
+function weighedSentences(letter: SeasonLetter): string[] {
+  const texts = seasonLetterTexts[letter.language];
+  const last = letter.zones.map(({ forecastOn }) => forecastOn).sort().at(-1);
+  const zones = letter.zones.filter(({ forecastOn }) => forecastOn === last);
+  if (last === undefined) return [texts.nothingWeighed];
+  const total = (of: (zone: (typeof zones)[number]) => number) => zones.reduce((sum, zone) => sum + of(zone), 0);
+  const half = Math.sqrt(total(({ forecast }) => (forecast.halfWidth ?? 0) ** 2));
+  const held = zones.filter((zone) => zone.held === true).length;
+  const heldText = held === zones.length ? texts.held : held === 0 ? texts.missed : filled(texts.heldSome, { held, n: zones.length });
+  const said = [filled(texts.expected, { day: dayText(letter, new Date(`${last}T12:00:00Z`)), forecast: tonnesText(letter, total(({ forecast }) => forecast.value), half), actual: tonnesText(letter, total(({ actualT }) => actualT), null), held: heldText })];
+  if (zones.some(({ how }) => how === 'shared')) said.push(texts.shared);
+  const [first] = letter.errorParts;
+  if (first) said.push(filled(texts.error, { part: texts.part[first.part], tonnes: tonnesText(letter, Math.abs(first.tonnes), null) }));
+  return said;
+}
+
+function differenceText(letter: SeasonLetter, { measure, difference, halfWidth, unit }: ReviewView['blocks'][number]['measures'][number]): string {
+  const isYield = measure === 'yield';
+  const factor = isYield && letter.units === 'us' ? tonsPerAcre : 1;
+  const shownUnit = isYield && letter.units === 'us' ? 'tons/ac' : measure === 'ph' ? '' : ` ${unit}`;
+  const decimals = measure === 'ph' ? 2 : 1;
+  return `${figure(letter, difference * factor, decimals)}${halfWidth === null ? '' : ` ± ${figure(letter, halfWidth * factor, decimals)}`}${shownUnit}`;
+}
+
+function tonnesText(letter: SeasonLetter, tonnes: number, half: number | null): string {
+  const factor = letter.units === 'us' ? shortTons : 1;
+  return `${figure(letter, tonnes * factor, 1)}${half === null ? '' : ` ± ${figure(letter, half * factor, 1)}`} ${letter.units === 'us' ? 'short tons' : 't'}`;
+}
+
+function figure({ language }: SeasonLetter, value: number, decimals: number): string {
+  return new Intl.NumberFormat(language === 'en' ? 'en-GB' : language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+}
+
+function dayText({ language, timeZone }: SeasonLetter, day: Date): string {
+  return new Intl.DateTimeFormat(language === 'en' ? 'en-GB' : language, { timeZone, day: 'numeric', month: 'long', year: 'numeric' }).format(day);
+}
+
+function filled(template: string, facts: Record<string, string | number>): string {
+  return template.replace(/\{(\w+)\}/g, (place, key: string) => String(facts[key] ?? place));
+}

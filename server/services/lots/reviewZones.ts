@@ -1,0 +1,100 @@
+import { errorParts, type ErrorPart, type ErrorShare } from '../../../shared/cellar/errorParts.ts';
+import type { ReviewView, TicketSplit } from '../../../shared/contracts/tickets.ts';
+import { isBearing } from '../../ground/blockVines.ts';
+import type { ScaleTicket } from '../../models/ScaleTicket.ts';
+import type { BoardBlock, BoardGround } from './boardGround.ts';
+import { figureOf, zoneOutlooks, type ZoneOutlook } from './zoneOutlook.ts';
+
+type ReviewedZone = ReviewView['zones'][number];
+const shownDates = 4;
+const yieldMeasures = ['clusterCount', 'clusterWeight'];
+
+interface Weighed {
+  kg: number;
+  how: 'measured' | 'shared';
+  /** Part of the zone's bearing vines that was picked into weighed lots. */
+  share: number;
+}
+
+/** Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. */
+export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
+  const all = ground.blocks.flatMap((block) => {
+    const dates = forecastDates(block);
+    return block.zones.flatMap((zone, at) => {
+      const weighed = weighedOf(ground, tickets, { block, at });
+      if (weighed === null) return [];
+      return dates.map((forecastOn) => ({ block, at, weighed, forecastOn, isLast: forecastOn === dates.at(-1), outlook: outlooksOn(ground, block, forecastOn)[at]!, number: zone.number }));
+    });
+  });
+  const zones = all.map(({ block, number, weighed, forecastOn, outlook }): ReviewedZone => {
+    const forecast = figureOf({ ...outlook.tonnes, value: outlook.tonnes.value * weighed.share, standardError: outlook.tonnes.standardError * weighed.share }, { n: null, kind: 'estimated' });
+    const actualT = weighed.kg / 1000;
+    return { blockId: block.ground.block.id, blockName: block.ground.block.name, zone: number, forecastOn, forecast, actualT, how: weighed.how, held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth };
+  });
+  const shares = all.filter(({ isLast }) => isLast).map(({ block, at, outlook, weighed }) => ({ blockId: block.ground.block.id, own: errorParts({ forecastT: outlook.tonnes.value * weighed.share, actualT: weighed.kg / 1000, ratios: ratiosOf(outlook, block.outlooks[at]!) }) }));
+  return { zones, parts: summed(shares.flatMap(({ own }) => own)), partsOf: (blockId) => summed(shares.filter((one) => one.blockId === blockId).flatMap(({ own }) => own)) };
+}
+
+/** Days on which clusters were counted or weighed and received before the first ticket: each gave a forecast of its own. */
+function forecastDates({ readings }: BoardBlock): string[] {
+  const days = new Set(readings.filter(({ measureCode, excludedReason }) => yieldMeasures.includes(measureCode) && excludedReason === null).map(({ receivedOn }) => receivedOn));
+  return [...days].sort().slice(-shownDates);
+}
+
+function outlooksOn(ground: BoardGround, block: BoardBlock, day: string): ZoneOutlook[] {
+  const readings = block.readings.filter(({ receivedOn }) => receivedOn <= day);
+  return zoneOutlooks({ ground: block.ground, zoneOf: block.zoneOf, zoneNumbers: block.zones.map(({ number }) => number), readings, measures: ground.measures, season: ground.season, factors: ground.factors });
+}
+
+/** Kilograms of a zone over all lots: by the splits of tickets, else by expected tonnes within the lot. */
+function weighedOf(ground: BoardGround, tickets: readonly ScaleTicket[], where: { block: BoardBlock; at: number }): Weighed | null {
+  const { block, at } = where;
+  const zone = block.zones[at]!;
+  let [kg, share] = [0, 0];
+  let how: Weighed['how'] = 'measured';
+  ground.lots.forEach((lot, index) => {
+    const own = shareIn(block, at, index);
+    const counting = tickets.filter((ticket) => ticket.lotId === lot.id);
+    if (own === 0 || counting.length === 0) return;
+    share += own;
+    for (const ticket of counting) {
+      const split = (ticket.split as TicketSplit[]).filter((part) => part.blockId === block.ground.block.id && part.zoneNumber === zone.number);
+      if ((ticket.split as TicketSplit[]).length > 0) {
+        kg += split.reduce((sum, part) => sum + part.kg, 0);
+        if (split.some((part) => part.how === 'shared')) how = 'shared';
+        continue;
+      }
+      const expected = own * block.outlooks[at]!.tonnes.value;
+      const whole = expectedOf(ground, index);
+      kg += whole > 0 ? (ticket.netKg * expected) / whole : 0;
+      if (expected < whole - 1e-9) how = 'shared';
+    }
+  });
+  return share > 0 && kg > 0 ? { kg, how, share } : null;
+}
+
+function expectedOf(ground: BoardGround, lot: number): number {
+  return ground.blocks.reduce((sum, block) => sum + block.zones.reduce((inside, _, at) => inside + shareIn(block, at, lot) * block.outlooks[at]!.tonnes.value, 0), 0);
+}
+
+function shareIn(block: BoardBlock, at: number, lot: number): number {
+  const { number } = block.zones[at]!;
+  const bearing = [...block.zoneOf.keys()].filter((vine) => block.zoneOf[vine] === number && block.lotOf[vine] === lot && isBearing(block.ground.states[vine]!)).length;
+  return bearing === 0 ? 0 : bearing / block.outlooks[at]!.bearing;
+}
+
+/** Factors that were measured again after a forecast, as found over as forecast. */
+function ratiosOf(then: ZoneOutlook, now: ZoneOutlook): Partial<Record<ErrorPart, number>> {
+  const part = (outlook: ZoneOutlook, name: string) => outlook.parts.find((one) => one.part === name)!;
+  const ratios: Partial<Record<ErrorPart, number>> = {};
+  for (const name of ['clusters', 'clusterWeight'] as const) if (part(now, name).kind === 'measured' && part(now, name).value !== part(then, name).value) ratios[name] = part(now, name).value / part(then, name).value;
+  if (part(now, 'losses').value !== part(then, 'losses').value) ratios.losses = (1 - part(now, 'losses').value) / (1 - part(then, 'losses').value);
+  return ratios;
+}
+
+function summed(shares: readonly ErrorShare[]): ErrorShare[] {
+  const totals = new Map<ErrorShare['part'], number>();
+  for (const { part, tonnes } of shares) totals.set(part, (totals.get(part) ?? 0) + tonnes);
+  return [...totals].map(([part, tonnes]) => ({ part, tonnes })).sort((a, b) => Math.abs(b.tonnes) - Math.abs(a.tonnes));
+}
+

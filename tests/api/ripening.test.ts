@@ -1,5 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { ScaleTicket } from '../../server/models/ScaleTicket.ts';
 import type { FactorView } from '../../shared/contracts/factors.ts';
 import type { DecisionView, LotsBoard } from '../../shared/contracts/lots.ts';
@@ -18,6 +19,7 @@ let west: ZonedBlock;
 let east: ZonedBlock;
 
 beforeAll(async () => {
+  openComputePool(1);
   app = await startTestApp();
   estate = await app.addEstate('Ripening test');
   const owner = { estateId: estate.estateId, personId: estate.ownerId };
@@ -29,7 +31,10 @@ beforeAll(async () => {
   await read(east, 1, [24.1, 24.3, 23.9, 24.2, 24.0]);
   await read(east, 2, [21.1, 21.3, 20.9, 21.2, 21.0]);
 });
-afterAll(() => app.close());
+afterAll(async () => {
+  await app.close();
+  await closeComputePool();
+});
 
 const base = () => `/api/estates/${estate.estateId}`;
 const board = async (scenario?: string) => (await winemaker.get(`${base()}/lots${scenario ? `?scenario=${scenario}` : ''}`)).body as LotsBoard;

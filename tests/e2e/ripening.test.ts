@@ -1,0 +1,120 @@
+import AxeBuilder from '@axe-core/playwright';
+import type { Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import type { LotsBoard } from '../../shared/contracts/lots.ts';
+import { startApplication, type Application } from './support/application.ts';
+
+let app: Application;
+
+beforeAll(async () => {
+  app = await startApplication();
+}, 600_000);
+afterAll(() => app?.close());
+
+/** No violation that axe calls serious or worse. */
+async function expectAccessible(page: Page): Promise<void> {
+  const { violations } = await new AxeBuilder({ page }).analyze();
+  expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id, nodes }) => `${id}: ${nodes.map(({ html }) => html.slice(0, 160)).join(' | ')}`)).toEqual([]);
+}
+
+const board = async (page: Page, estateId: string) => (await (await page.request.get(`${app.url}/api/estates/${estateId}/lots`)).json()) as LotsBoard;
+let lotName = '';
+let noticeNumber = '';
+
+describe('from results to the season’s review', () => {
+  it('the winemaker reads results, how many more, a forecast with its dates, and what the weather did', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/ripeness`);
+    await page.getByRole('heading', { name: 'How many more' }).waitFor({ timeout: 60_000 });
+    await page.getByText('mm of rain in three days').first().waitFor();
+    await page.getByText(/degree days above 10 °C/).waitFor();
+    await page.getByLabel('Your target').fill('26');
+    await page.getByLabel('Your target').press('Tab');
+    await expect.poll(() => page.getByText(/likely between|was likely reached|No date for/).count()).toBeGreaterThan(0);
+    await page.getByText(/When ripening flattens, a straight line runs ahead/).waitFor();
+    await expectAccessible(page);
+    await page.goto(`${app.url}/e/${estateId}/weather`);
+    await page.getByLabel('Or paste the table here').fill('date,max,min\n03/09/2026,28,14\n');
+    await page.getByRole('button', { name: 'Read it back' }).click();
+    await page.getByText('How are the dates written?').waitFor();
+    await expectAccessible(page);
+    await context.close();
+  });
+
+  it('has lots proposed, changes the proposal by hand and puts it in force', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/lots`);
+    await page.getByRole('button', { name: 'Suggest lots' }).click();
+    await page.getByRole('group', { name: /Chance that a lot fits/ }).getByText('50').click();
+    await page.getByRole('button', { name: 'Propose', exact: true }).click();
+    await page.getByText(/^Proposal of/).waitFor({ timeout: 60_000 });
+    await page.getByText(/spreads from its lot’s mean|alone: nothing near/).first().waitFor();
+    await expectAccessible(page);
+    const live = await board(page, estateId);
+    expect(live.lots.some(({ name }) => name.endsWith(' 1'))).toBe(false);
+    const whatIf = live.scenarios.find(({ isLive }) => !isLive)!;
+    const proposal = (await (await page.request.get(`${app.url}/api/estates/${estateId}/lots?scenario=${whatIf.id}`)).json()) as LotsBoard;
+    lotName = proposal.suggestion!.lots[0]!.lotName;
+    const free = proposal.zones.find(({ freeShare }) => freeShare > 0.99)!;
+    await page.getByRole('row', { name: new RegExp(`${free.blockName}.*${free.name}`) }).first().click();
+    await page.getByRole('button', { name: lotName, exact: true }).last().click();
+    await page.getByText(`${free.blockName} zone ${free.number} is in ${lotName}.`).waitFor();
+    await page.getByRole('button', { name: `Take out of ${lotName}` }).click();
+    await page.getByText(`${free.blockName} zone ${free.number} is out of ${lotName}.`).waitFor();
+    await page.getByRole('button', { name: 'Side by side' }).click();
+    await page.getByRole('button', { name: 'Show them' }).click();
+    await page.getByText('Chance that every lot fits its tank').waitFor();
+    await page.getByRole('button', { name: 'Put in force' }).click();
+    await page.getByRole('dialog').getByRole('button', { name: 'Put in force' }).click();
+    await page.getByText(/is in force now/).waitFor();
+    expect((await board(page, estateId)).lots.map(({ name }) => name)).toContain(lotName);
+    await context.close();
+  });
+
+  it('gives the lot its tank and day, confirms it and sends its notice', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/lots`);
+    await page.getByRole('button', { name: new RegExp(`^${lotName}`) }).first().click();
+    await page.getByLabel('Who picks').fill('north gang, 8 people');
+    await page.getByRole('button', { name: 'Keep changes' }).click();
+    await page.getByText(`“${lotName}” was kept.`).waitFor();
+    await page.getByText(/chance it fits T/).first().waitFor();
+    await page.getByRole('button', { name: `Confirm ${lotName}` }).click();
+    await page.getByRole('dialog').getByRole('button', { name: 'Confirm a lot' }).click();
+    await page.getByText(`Lot “${lotName}” is confirmed.`).waitFor();
+    await page.goto(`${app.url}/e/${estateId}/pick-board`);
+    await page.getByRole('row', { name: new RegExp(lotName) }).first().click();
+    await page.getByRole('button', { name: 'Write the pick notice' }).click();
+    await page.getByRole('group', { name: 'Who must know' }).getByRole('checkbox').first().check();
+    for (const box of await page.getByRole('group', { name: 'Who must know' }).getByRole('checkbox').all()) await box.check();
+    await page.getByRole('button', { name: 'Send the notice' }).click();
+    const said = await page.getByText(/Pick notice \d+ was sent/).innerText();
+    noticeNumber = /\d+/.exec(said)![0];
+    await expectAccessible(page);
+    await context.close();
+  });
+
+  it('the manager confirms the notice, enters the ticket of the load and reads the review', async () => {
+    const { page, context, estateId } = await app.signIn('manager');
+    await page.goto(`${app.url}/e/${estateId}/pick-board`);
+    const paper = page.locator('article', { hasText: `Pick notice ${noticeNumber}` });
+    await paper.getByRole('button', { name: 'I have read it' }).click();
+    await paper.getByText(/Read by/).waitFor();
+    await page.goto(`${app.url}/e/${estateId}/review`);
+    await page.getByRole('button', { name: 'Enter a scale ticket' }).click();
+    await page.getByLabel('Lot', { exact: true }).first().selectOption({ label: lotName });
+    await page.getByLabel('Ticket number').fill('E2E-1');
+    await page.getByLabel('Gross').fill('9000');
+    await page.getByLabel('Tare').fill('3000');
+    await page.getByRole('button', { name: 'Enter the ticket' }).click();
+    await page.getByText('Ticket E2E-1 was entered.').waitFor();
+    await page.getByRole('heading', { name: 'Did zones matter?' }).waitFor();
+    await page.getByRole('heading', { name: 'Forecasts by zone, block and day' }).waitFor();
+    await page.getByText(/few: says little/).first().waitFor();
+    await page.getByText(/Not a contract weight/).first().waitFor();
+    await expectAccessible(page);
+    const letter = await page.request.get(`${app.url}${await page.getByRole('link', { name: /Season letter, PDF/ }).first().getAttribute('href')}`);
+    expect(letter.headers()['content-type']).toBe('application/pdf');
+    await context.close();
+  });
+});

@@ -1,7 +1,7 @@
 import { Router } from 'express';
-import { estateChange, newEstate } from '../../shared/contracts/estate.ts';
-import { accessOf, allow, signedIn } from '../access/guard.ts';
-import { changeEstate, createEstate, readEstateFacts } from '../services/estates.ts';
+import { estateChange, newEstate, seasonChange } from '../../shared/contracts/estate.ts';
+import { accessOf, allow, idParam, signedIn } from '../access/guard.ts';
+import { changeEstate, changeSeason, createEstate, readEstateFacts } from '../services/estates.ts';
 import { describeSession } from '../services/sessions.ts';
 
 /** Estates a person belongs to, and a new one of their own. */
@@ -31,6 +31,10 @@ export function estateRoutes(): Router {
   });
   router.patch('/', allow('estate.settings'), async (request, response) => {
     await changeEstate(accessOf(request), estateChange.parse(request.body));
+    response.status(204).end();
+  });
+  router.patch('/seasons/:seasonId', allow('estate.settings'), async (request, response) => {
+    await changeSeason(accessOf(request), idParam(request, 'seasonId'), seasonChange.parse(request.body));
     response.status(204).end();
   });
   return router;

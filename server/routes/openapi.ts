@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
-import { estateChange, estateFacts, newEstate } from '../../shared/contracts/estate.ts';
+import { estateChange, estateFacts, newEstate, seasonChange } from '../../shared/contracts/estate.ts';
 import { arrivedUploads, importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
 import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
@@ -44,6 +44,7 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/invitations/accept', summary: 'Join an estate with an invitation', body: invitationAnswer, answer: session },
   { method: 'post', path: '/api/estates', summary: 'Make an estate', body: newEstate },
   { method: 'patch', path: '/api/estates/{estateId}', summary: 'Change an estate', body: estateChange },
+  { method: 'patch', path: '/api/estates/{estateId}/seasons/{seasonId}', summary: 'Move the phases of a season', body: seasonChange },
   { method: 'get', path: '/api/estates/{estateId}/facts', summary: 'What the estate says of itself, its settings, and backups', answer: estateFacts },
   { method: 'post', path: '/api/estates/{estateId}/invitations', summary: 'Invite a person', body: newInvitation },
   { method: 'post', path: '/api/estates/{estateId}/invitations/{invitationId}/resend', summary: 'Send an invitation once more, with a new link' },

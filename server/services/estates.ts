@@ -1,8 +1,10 @@
 import type { z } from 'zod';
 import { may } from '../../shared/catalog/permissions.ts';
-import { estateSettings, type BackupView, type EstateFactsView, type NewEstate, type estateChange } from '../../shared/contracts/estate.ts';
+import { estateSettings, type BackupView, type EstateFactsView, type NewEstate, type SeasonChange, type estateChange } from '../../shared/contracts/estate.ts';
 import { measures } from '../../shared/catalog/measures.ts';
+import { phaseProblem, startingPhases } from '../../shared/season/phases.ts';
 import type { Access } from '../access/access.ts';
+import { Clash, Unusable } from '../errors.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
 import { BackupRecord } from '../models/BackupRecord.ts';
 import { Estate } from '../models/Estate.ts';
@@ -18,7 +20,8 @@ export async function createEstate(personId: string, input: NewEstate, today: st
     const { marker, ...facts } = input;
     const estate = await Estate.query(trx).insert({ ...facts, settings: estateSettings.parse({}), ...(marker ? { marker: fromGeoJson(marker) as never } : {}) });
     await Membership.query(trx).insert({ estateId: estate.id, personId, role: 'owner' });
-    const season = await Season.query(trx).insert({ estateId: estate.id, ...seasonAround(today, input.seasonStartMonth) });
+    const span = seasonAround(today, input.seasonStartMonth);
+    const season = await Season.query(trx).insert({ estateId: estate.id, ...span, phases: startingPhases(span.startsOn) });
     await Scenario.query(trx).insert({ estateId: estate.id, seasonId: season.id, name: season.name, isLive: true, createdBy: personId });
     await MeasureRecord.query(trx).insert(startingMeasures(estate.id));
     await writeAudit(trx, { estateId: estate.id, personId }, { action: 'estate.create', subjectType: 'estate', subjectId: estate.id, subjectName: input.name });
@@ -90,5 +93,20 @@ export async function changeEstate(access: Access, change: z.infer<typeof estate
       .findById(access.estateId)
       .patch({ ...facts, ...(merged ? { settings: merged } : {}), ...(marker ? { marker: fromGeoJson(marker) as never } : {}) });
     await writeAudit(trx, access, { action: 'estate.settings', subjectType: 'estate', subjectId: access.estateId, subjectName: before.name, before: { name: before.name, settings: before.settings }, after: change });
+  });
+}
+
+const phaseWords = { reversed: 'ends before it begins', outside: 'does not lie within the season', overlaps: 'begins before the phase ahead of it has ended' } as const;
+
+/** Moves the phases of a season that is still open. */
+export async function changeSeason(access: Access, seasonId: string, change: SeasonChange): Promise<void> {
+  await Season.transaction(async (trx) => {
+    const before = await Season.query(trx).findOne({ estateId: access.estateId, id: seasonId }).forUpdate().throwIfNotFound();
+    if (before.closedAt) throw new Clash('seasonClosed', `Season ${before.name} is closed. It can be read, not changed.`);
+    const phases = change.phases as Record<string, [string, string]>;
+    const wrong = phaseProblem(phases, before);
+    if (wrong) throw new Unusable('phases', `The phase "${wrong.phase}" ${phaseWords[wrong.problem]}. Change its days.`);
+    await Season.query(trx).where({ estateId: access.estateId, id: seasonId }).patch({ phases });
+    await writeAudit(trx, access, { action: 'estate.season', subjectType: 'season', subjectId: seasonId, subjectName: before.name, before: { phases: before.phases }, after: { phases } });
   });
 }

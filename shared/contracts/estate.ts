@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { phaseIds } from '../season/phases.ts';
 import { id, isoDate, language, pointGeometry, shortName, units } from './common.ts';
 
 /** Numbers an estate sets for itself; each has a stated starting value. */
@@ -47,4 +48,7 @@ export const estateFacts = z.object({ facts: newEstate, settings: estateSettings
 export type EstateFactsView = z.infer<typeof estateFacts>;
 
 export const seasonView = z.object({ id, name: z.string(), startsOn: isoDate, endsOn: isoDate, phases: z.record(z.string(), z.tuple([isoDate, isoDate])), closed: z.boolean() });
+const phase = z.tuple([isoDate, isoDate]);
+export const seasonChange = z.object({ phases: z.partialRecord(z.enum(phaseIds), phase) });
+export type SeasonChange = z.infer<typeof seasonChange>;
 export type SeasonView = z.infer<typeof seasonView>;

@@ -11,8 +11,6 @@ export interface SeasonPhase {
   readonly endsOn: string;
 }
 
-export const phaseIds = ['dormant', 'bloom', 'lagPhase', 'veraison', 'pick', 'review'] as const;
-
 const dayMs = 86_400_000;
 const day = (iso: string) => Date.parse(`${iso.slice(0, 10)}T00:00:00Z`);
 export const isoDay = (ms: number) => new Date(ms).toISOString().slice(0, 10);

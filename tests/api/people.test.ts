@@ -100,3 +100,17 @@ describe('walls between estates', () => {
     expect((await stranger.put(`/api/estates/${other.estateId}/people/${inside.id}/roles`, { roles: ['guest'] })).status).toBe(404);
   });
 });
+
+describe('the season', () => {
+  it('starts with usual days, and takes others that fit', async () => {
+    const seasonOf = async () => (await owner.get('/api/session')).body.estates[0].season as { id: string; startsOn: string; phases: Record<string, [string, string]> };
+    const { id, startsOn, phases } = await seasonOf();
+    expect(Object.keys(phases)).toEqual(['dormant', 'bloom', 'lagPhase', 'veraison', 'pick', 'review']);
+    const moved = { ...phases, pick: [phases.pick![0], phases.pick![0]] as [string, string] };
+    expect((await owner.patch(`${base()}/seasons/${id}`, { phases: moved })).status).toBe(204);
+    expect((await seasonOf()).phases).toEqual(moved);
+    const refused = await owner.patch(`${base()}/seasons/${id}`, { phases: { ...moved, bloom: [startsOn, '2020-01-01'] } });
+    expect([refused.status, refused.body.code]).toEqual([422, 'phases']);
+    expect((await seasonOf()).phases).toEqual(moved);
+  });
+});

@@ -4,7 +4,7 @@ import { randomUUID } from 'node:crypto';
 /** Which table holds the thing that a parameter of an address names. */
 export const tableOf: Record<string, string> = {
   personId: 'people', invitationId: 'invitations', jobId: 'jobs', measureId: 'measures', restrictionId: 'entry_restrictions', readingId: 'readings', conflictId: 'reading_conflicts',
-  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags',
+  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags', seasonId: 'seasons',
 };
 
 const outline = 'SRID=4326;MULTIPOLYGON(((-7.51 38.61,-7.50 38.61,-7.50 38.62,-7.51 38.62,-7.51 38.61)))';
@@ -18,6 +18,7 @@ export async function layOneOfEach(knex: Knex, estateId: string, personId: strin
     return made!.id;
   };
   const seasonId = ((await knex('seasons').where({ estateId }).first('id')) as { id: string }).id;
+  ids.set('seasons', seasonId);
   ids.set('measures', ((await knex('measures').where({ estateId }).first('id')) as { id: string }).id);
   const scenarioId = ((await knex('scenarios').where({ estateId }).first('id')) as { id: string }).id;
   await put('invitations', { email: `${randomUUID()}@test.example`, roles: knex.raw('array[?]', ['crew']), tokenHash: randomUUID(), expiresAt: '2999-01-01', invitedBy: personId });

@@ -24,7 +24,7 @@ function followHeading({ moveFocus }: { moveFocus: boolean }): () => void {
     const heading = document.querySelector('h1');
     // The old heading stands until the new view is there.
     if (heading === null || (heading === old && heading.textContent === oldWords)) return;
-    document.title = `${heading.textContent.replace(/\s+/g, ' ').trim()} · Patchrow`;
+    document.title = `${(heading.textContent ?? '').replace(/\s+/g, ' ').trim()} · Patchrow`;
     if (!moveFocus || isHeldBy(document.activeElement)) return;
     heading.tabIndex = -1;
     heading.focus({ preventScroll: true });

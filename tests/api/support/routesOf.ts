@@ -9,6 +9,7 @@ export interface ServedRoute {
 
 interface Layer {
   name: string;
+  rawPath?: string;
   route?: { path: string; methods: Record<string, boolean> };
   handle: { stack?: Layer[] };
 }
@@ -24,6 +25,8 @@ function routesIn(stack: Layer[], belowEstate: boolean): ServedRoute[] {
   return stack.flatMap((layer) => {
     if (layer.name === 'estateGuard') guarded = true;
     if (layer.route) return Object.keys(layer.route.methods).map((method) => ({ method, path: layer.route!.path, belowEstate: guarded }));
-    return layer.handle.stack ? routesIn(layer.handle.stack, guarded) : [];
+    if (layer.handle.stack) return routesIn(layer.handle.stack, guarded);
+    // A handler that takes a whole address, whatever the method, such as the one for uploads in pieces.
+    return belowEstate && layer.rawPath !== undefined && layer.rawPath !== '/' ? [{ method: 'all', path: layer.rawPath, belowEstate }] : [];
   });
 }

@@ -4,8 +4,11 @@ import { randomUUID } from 'node:crypto';
 /** Which table holds the thing that a parameter of an address names. */
 export const tableOf: Record<string, string> = {
   personId: 'people', invitationId: 'invitations', jobId: 'jobs', measureId: 'measures', restrictionId: 'entry_restrictions', readingId: 'readings', conflictId: 'reading_conflicts',
-  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags', seasonId: 'seasons',
+  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags', seasonId: 'seasons', resultId: 'readings', scenarioId: 'scenarios',
 };
+
+/** Parameters that name no stored thing. */
+export const notIds: ReadonlySet<string> = new Set(['day']);
 
 const outline = 'SRID=4326;MULTIPOLYGON(((-7.51 38.61,-7.50 38.61,-7.50 38.62,-7.51 38.62,-7.51 38.61)))';
 
@@ -21,6 +24,7 @@ export async function layOneOfEach(knex: Knex, estateId: string, personId: strin
   ids.set('seasons', seasonId);
   ids.set('measures', ((await knex('measures').where({ estateId }).first('id')) as { id: string }).id);
   const scenarioId = ((await knex('scenarios').where({ estateId }).first('id')) as { id: string }).id;
+  ids.set('scenarios', scenarioId);
   await put('invitations', { email: `${randomUUID()}@test.example`, roles: knex.raw('array[?]', ['crew']), tokenHash: randomUUID(), expiresAt: '2999-01-01', invitedBy: personId });
   const blockId = await put('blocks', { name: 'Over the Wall', boundary: knex.raw('?::geometry', [outline]), areaM2: 900_000, epsg: 32629, gridKey: 'none' });
   await put('jobs', { kind: 'zoning', subjectType: 'zoning' });

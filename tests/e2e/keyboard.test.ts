@@ -70,20 +70,25 @@ describe('without a mouse', () => {
 
     await press(page, /^Make zones$/);
     await page.waitForURL(/\/zoning/);
+    await heading(page, /\S/);
     await press(page, /^Run again$|^Zone this block$/);
     await press(page, /^Run$/);
     await page.getByRole('button', { name: /Keep .* as a draft/ }).waitFor({ timeout: 120_000 });
     await press(page, /^Keep .* as a draft$/);
     await page.waitForURL(/\/zonings\/[0-9a-f-]{36}\/edit$/);
+    await heading(page, /High Marl/);
     await press(page, /^Publish version/);
     await page.waitForURL(/\/zones$/);
+    await heading(page, /^Zones/);
 
     await find(page, 'sampling', /Sampling/);
     await page.waitForURL(/\/sampling$/);
+    await heading(page, /^Sampling/);
     await tabTo(page, /^Block/);
     await page.keyboard.type('High');
     await press(page, /^New plan$/);
     await page.waitForURL(/\/plan$/);
+    await heading(page, /\S/);
     await press(page, /^Draw the vines$/);
     await page.getByRole('button', { name: 'Lock plan' }).waitFor();
 

@@ -4,12 +4,14 @@ import { VitePWA } from 'vite-plugin-pwa';
 
 const languages = ['en', 'es', 'fr', 'it', 'pt'];
 
-/** One chunk a language, so that a reader loads one set of texts and no more. */
-const languageGroups = languages.map((language) => ({
-  name: `texts-${language}`,
-  test: new RegExp(`src[\\\\/]locales[\\\\/]${language}[\\\\/]`),
-  priority: 40,
-}));
+/** Texts that the phone and the door need, as in src/lib/i18n.ts. */
+const phoneTexts = 'base|conflicts|door|field|frame|measures|problem|rowstrip|safety';
+
+/** Two chunks a language, so that a phone in the row loads its own small set of texts and no more. */
+const languageGroups = languages.flatMap((language) => [
+  { name: `texts-${language}-phone`, test: new RegExp(`src[\\\\/]locales[\\\\/]${language}[\\\\/](?:${phoneTexts})\\.json`), priority: 45 },
+  { name: `texts-${language}`, test: new RegExp(`src[\\\\/]locales[\\\\/]${language}[\\\\/]`), priority: 40 },
+]);
 
 export default defineConfig({
   plugins: [

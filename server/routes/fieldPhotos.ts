@@ -2,9 +2,7 @@ import { Router, type RequestHandler } from 'express';
 import { pipeline } from 'node:stream/promises';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { newFieldPhoto } from '../../shared/contracts/fieldPhotos.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
-import { Unusable } from '../errors.ts';
 import { keepPhoto, listPhotos, openPhoto } from '../services/photos/fieldPhotos.ts';
 import { uploadsOf } from '../storage/uploads.ts';
 
@@ -20,8 +18,8 @@ export function fieldPhotoRoutes(options: { receive: RequestHandler }): Router {
     response.json({ items, total: items.length });
   });
   router.post('/field-photos', own, options.receive, async (request, response) => {
-    await keepPhoto(accessOf(request), newFieldPhoto.parse(factsOf(request.body)), uploadsOf(request.files));
-    response.status(201).json({ id: newFieldPhoto.parse(factsOf(request.body)).id });
+    const { facts } = (request.body ?? {}) as { facts?: unknown };
+    response.status(201).json(await keepPhoto(accessOf(request), facts, uploadsOf(request.files)));
   });
   router.get('/field-photos/:photoId', own, async (request, response) => {
     const { name, bytes, stream } = await openPhoto(accessOf(request), idParam(request, 'photoId'));
@@ -29,14 +27,4 @@ export function fieldPhotoRoutes(options: { receive: RequestHandler }): Router {
     await pipeline(stream, response);
   });
   return router;
-}
-
-/** The text that comes beside the picture. */
-function factsOf(body: unknown): unknown {
-  const text = typeof body === 'object' && body !== null && 'facts' in body ? body.facts : null;
-  try {
-    return JSON.parse(typeof text === 'string' ? text : '');
-  } catch {
-    throw new Unusable('badFacts', 'Send what the photo shows as JSON in the field "facts".');
-  }
 }

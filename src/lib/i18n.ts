@@ -12,22 +12,32 @@ const files = import.meta.glob<{ default: Record<string, unknown> }>('../locales
 
 export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false });
 
-const loaded = new Set<Language>();
+/** What the phone in the row and the door need; the office's texts come with its first screen. vite.config.ts makes one chunk of each. */
+const phoneFeatures: ReadonlySet<string> = new Set(['base', 'conflicts', 'door', 'field', 'frame', 'measures', 'problem', 'rowstrip', 'safety']);
+
+const loaded = new Set<string>();
+let isOfficeOpen = false;
 
 /** Loads a language once and makes it the one that is shown. */
 export async function showLanguage(language: Language): Promise<void> {
-  if (!loaded.has(language)) {
-    i18n.global.setLocaleMessage(language, (await textsOf(language)) as Record<string, never>);
-    loaded.add(language);
-  }
+  await load(language, 'phone');
+  if (isOfficeOpen) await load(language, 'office');
   i18n.global.locale.value = language;
   document.documentElement.lang = language;
 }
 
-async function textsOf(language: Language): Promise<Record<string, unknown>> {
-  const own = Object.entries(files).filter(([path]) => path.startsWith(`../locales/${language}/`));
-  const parts = await Promise.all(own.map(async ([path, load]) => [featureOf(path), (await load()).default] as const));
-  return Object.fromEntries(parts);
+/** Loads the texts of the office in the language that is shown, and from now on in every other. */
+export async function loadOfficeTexts(): Promise<void> {
+  isOfficeOpen = true;
+  await load(i18n.global.locale.value as Language, 'office');
+}
+
+async function load(language: Language, part: 'phone' | 'office'): Promise<void> {
+  if (loaded.has(`${language} ${part}`)) return;
+  const own = Object.entries(files).filter(([path]) => path.startsWith(`../locales/${language}/`) && phoneFeatures.has(featureOf(path)) === (part === 'phone'));
+  const parts = await Promise.all(own.map(async ([path, read]) => [featureOf(path), (await read()).default] as const));
+  i18n.global.mergeLocaleMessage(language, Object.fromEntries(parts) as Record<string, never>);
+  loaded.add(`${language} ${part}`);
 }
 
 function featureOf(path: string): string {

@@ -24,6 +24,8 @@ export interface Entry {
   readonly outcome: ReadingOutcome | null;
   /** True once it has left the phone, whether or not an answer came: from then on it can only be corrected. */
   readonly isTried?: boolean;
+  /** A finding that was taken back after it had left the phone: the vine is read after all. */
+  readonly isVoid?: boolean;
 }
 
 export type EntryReading = Pick<NewReading, 'id' | 'blockId' | 'roundId' | 'targetId' | 'rowId' | 'ordinal' | 'measureCode' | 'value' | 'unit' | 'valueTyped' | 'takenAt' | 'deviceId' | 'supersedes' | 'flags' | 'readBy' | 'seenAs'>;

@@ -23,6 +23,14 @@ export async function takeBack(ids: readonly string[]): Promise<boolean> {
   return isFree;
 }
 
+/** Sets a finding aside that has left the phone already; the reading that follows takes the mark back on the server. */
+export async function setAside(id: string): Promise<void> {
+  const transaction = (await fieldDatabase()).transaction('entries', 'readwrite', { durability: 'strict' });
+  const entry = await transaction.store.get(id);
+  if (entry) void transaction.store.put({ ...entry, isVoid: true });
+  await transaction.done;
+}
+
 export async function entriesOfRound(personId: string, roundId: string): Promise<Entry[]> {
   const entries = await (await fieldDatabase()).getAllFromIndex('entries', 'round', roundId);
   return entries.filter((entry) => entry.personId === personId).sort((a, b) => a.at.localeCompare(b.at));
@@ -62,6 +70,8 @@ export function sendWaiting(personId: string, now: () => Date): Promise<SendResu
 }
 
 async function sendAll(personId: string, now: () => Date): Promise<SendResult> {
+  // Where the phone itself says that there is no network nothing is tried, so that what was typed can still be taken back.
+  if (!navigator.onLine) return { sent: 0, reached: false, clockOffMs: null };
   let sent = 0;
   let clockOffMs: number | null = null;
   // What the server refuses stays on the phone with its reason and is offered again next time, not in this run.
@@ -110,7 +120,8 @@ async function settle(batch: readonly Entry[], answer: BatchAnswer): Promise<num
     if (!outcome) continue;
     const isStored = outcome.state !== 'refused';
     if (isStored) received++;
-    void transaction.store.put({ ...entry, received: isStored ? 1 : 0, isTried: true, outcome });
+    const stored = await transaction.store.get(entry.id);
+    void transaction.store.put({ ...(stored ?? entry), received: isStored ? 1 : 0, isTried: true, outcome });
   }
   await transaction.done;
   return received;

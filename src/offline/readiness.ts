@@ -7,20 +7,22 @@ export interface Readiness {
   readonly canWrite: boolean;
   /** The program itself is kept on the phone, so that it opens without signal. */
   readonly hasProgram: boolean;
+  /** Room for a day of readings and photos; true where the browser does not tell. */
+  readonly hasSpace: boolean;
   /** The browser promised not to clear the store; null where it cannot be asked. */
   readonly isPersistent: boolean | null;
   readonly checkedAt: string;
 }
 
-export function isReady({ hasRound, canWrite, hasProgram }: Readiness): boolean {
-  return hasRound && canWrite && hasProgram;
+export function isReady({ hasRound, canWrite, hasProgram, hasSpace }: Readiness): boolean {
+  return hasRound && canWrite && hasProgram && hasSpace;
 }
 
 /** Reads the stored round back, writes and reads a line, and looks for the kept program: a test, not a wish. */
 export async function checkReadiness(owner: { estateId: string; personId: string }, roundId: string, now: Date): Promise<Readiness> {
   const kept = await keptRound(owner, roundId);
   const hasRound = kept !== null && kept.round.stops.every(({ rowId }) => kept.round.rows.some(({ id }) => id === rowId)) && kept.round.measures.length > 0;
-  return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
+  return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
 }
 
 async function writesAndReads(now: Date): Promise<boolean> {
@@ -36,6 +38,14 @@ async function programIsKept(): Promise<boolean> {
   if (!('serviceWorker' in navigator) || !('caches' in globalThis)) return false;
   const registration = await navigator.serviceWorker.getRegistration();
   return registration?.active != null && (await caches.match('/index.html', { ignoreSearch: true })) !== undefined;
+}
+
+/** Some hundred photos of 300 KB, and readings many times over. */
+const dayBytes = 40 * 2 ** 20;
+
+async function spaceIsLeft(): Promise<boolean> {
+  const { quota, usage } = (await navigator.storage?.estimate?.()) ?? {};
+  return quota === undefined || usage === undefined || quota - usage > dayBytes;
 }
 
 async function askToPersist(): Promise<boolean | null> {

@@ -1,6 +1,7 @@
 import { createRouter, createWebHistory, type RouteLocationNormalized, type RouteRecordRaw, type Router } from 'vue-router';
 import type { Permission, Reach } from '../../shared/catalog/permissions.ts';
 import type { useSessionStore } from '../stores/session.ts';
+import { loadOfficeTexts } from '../lib/i18n.ts';
 import { firstPlace } from '../composables/firstPlace.ts';
 import { announceArrivals } from './arrival.ts';
 import { routePlaces, type Frame, type RouteName } from './routeNames.ts';
@@ -30,7 +31,11 @@ function records(): RouteRecordRaw[] {
 /** The router, with the guard that asks for sign-in, keeps the estate in step and turns people away from what they may not see. */
 export function createAppRouter(session: SessionStore): Router {
   const router = createRouter({ history: createWebHistory(), routes: records(), scrollBehavior: (to, from, saved) => saved ?? (to.name === from.name ? false : { top: 0 }) });
-  router.beforeEach((to) => guard(to, session, router));
+  router.beforeEach(async (to) => {
+    const answer = guard(to, session, router);
+    if (answer === true && to.meta.frame === 'office') await loadOfficeTexts();
+    return answer;
+  });
   announceArrivals(router);
   return router;
 }

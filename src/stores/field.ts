@@ -10,7 +10,7 @@ import { deviceId } from '../offline/deviceId.ts';
 import type { Entry } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
 import { emptyPhone } from '../offline/emptyPhone.ts';
-import { addEntries, allEntries, entriesOfRound, sendWaiting, takeBack, waitingOfOthers } from '../offline/outbox.ts';
+import { addEntries, allEntries, entriesOfRound, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
 import { addPhoto, sendPhotos } from '../offline/photoBox.ts';
 import { totalWaiting } from '../offline/waiting.ts';
 
@@ -132,9 +132,10 @@ export const useFieldStore = defineStore('field', () => {
     await count();
   }
 
-  /** Takes the last entry back if it is only on this phone. */
+  /** Takes the last entry back if it is only on this phone; a finding that has left it is set aside. */
   async function undo(entry: Entry): Promise<boolean> {
-    const isBack = await takeBack([entry.id]);
+    const isBack = (await takeBack([entry.id])) || entry.kind === 'finding';
+    if (entry.kind === 'finding') await setAside(entry.id);
     await count();
     return isBack;
   }

@@ -134,6 +134,13 @@ describe('a paper sheet', () => {
     expect((await send(ben, { readings: [paper(3, { readBy: made.managerId })] })).outcomes[0]!.state).toBe('refused');
   });
 
+  it('shows the walk of who walked with what their phone had sent, to those who may type it', async () => {
+    await send(ana, { readings: [made.reading(0, { value: 21 })] });
+    const walk = await made.manager.get(`${base()}/rounds/${made.roundId}?person=${made.crew[ana]!.id}`);
+    expect(walk.body).toMatchObject({ received: [{ targetId: made.targets[0]!.id, value: 21 }], others: [{ name: made.crew[ben]!.name }] });
+    expect((await made.crew[ben]!.agent.get(`${base()}/rounds/${made.roundId}?person=${made.crew[ana]!.id}`)).status).toBe(403);
+  });
+
   it('does not double what the phone had sent, and says where it differs', async () => {
     await send(ana, { readings: [made.reading(0, { value: 21 }), made.reading(1, { value: 22 })] });
     const typed = { readings: [paper(0, { value: 21 }), paper(1, { value: 27 }), paper(2, { value: 24 })] };
@@ -161,6 +168,15 @@ describe('a finding', () => {
     await Vine.query().delete();
     await send(ana, { findings: [finding] });
     expect(await Vine.query().resultSize()).toBe(0);
+  });
+
+  it('is taken back when the same person reads the vine afterwards, and by nobody else', async () => {
+    await send(ana, { findings: [made.finding(2), made.finding(3)] });
+    await send(ben, { readings: [made.reading(2, { takenAt: '2026-09-01T09:00:00Z' })] });
+    expect(await Vine.query().resultSize()).toBe(2);
+    await send(ana, { readings: [made.reading(3, { takenAt: '2026-09-01T09:00:00Z' })] });
+    expect((await Vine.query()).map(({ ordinal }) => ordinal)).toEqual([made.targets[2]!.ordinal]);
+    expect(await VineFindingRecord.query().resultSize()).toBe(2);
   });
 
   it('that cannot be read holds nothing back', async () => {

@@ -3,7 +3,7 @@ import { createPinia, setActivePinia } from 'pinia';
 import PrimeVue from 'primevue/config';
 import type { Component } from 'vue';
 import { createMemoryHistory, createRouter } from 'vue-router';
-import { i18n, showLanguage } from '../../src/lib/i18n.ts';
+import { i18n, loadOfficeTexts, showLanguage } from '../../src/lib/i18n.ts';
 import { routePlaces } from '../../src/router/routeNames.ts';
 import type { Language } from '../../src/lib/format.ts';
 
@@ -11,6 +11,7 @@ import type { Language } from '../../src/lib/format.ts';
 export async function mountWithTexts<C extends Component>(component: C, options: ComponentMountingOptions<C> & { language?: Language } = {}): Promise<VueWrapper> {
   const { language = 'en', ...rest } = options;
   await showLanguage(language);
+  await loadOfficeTexts();
   const pinia = createPinia();
   setActivePinia(pinia);
   const router = createRouter({ history: createMemoryHistory(), routes: Object.entries(routePlaces).map(([name, { path, frame }]) => ({ name, path, component: { render: () => null }, meta: { frame } })) });

@@ -1,7 +1,7 @@
 import { readFile, writeFile } from 'node:fs/promises';
 import type { Readable } from 'node:stream';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
-import type { FieldPhotoView, NewFieldPhoto } from '../../../shared/contracts/fieldPhotos.ts';
+import { newFieldPhoto, type FieldPhotoView, type NewFieldPhoto } from '../../../shared/contracts/fieldPhotos.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { loadBlockVines } from '../../ground/blockVines.ts';
@@ -18,13 +18,14 @@ import { vineWords } from '../plans/viewPlan.ts';
 import { nameFor } from '../readings/readerName.ts';
 import { withoutRecords } from './pictureBytes.ts';
 
-/** Keeps a photo of a vine, freed of place and device. Sent again it is kept once. */
-export async function keepPhoto(access: Access, input: NewFieldPhoto, uploads: readonly Upload[]): Promise<void> {
+/** Keeps a photo of a vine, freed of place and device. Sent again it is kept once; refused it leaves nothing. */
+export async function keepPhoto(access: Access, facts: unknown, uploads: readonly Upload[]): Promise<{ id: string }> {
   try {
+    const input = newFieldPhoto.parse(readFacts(facts));
     const [upload, ...more] = uploads;
     if (!upload || more.length > 0) throw new Unusable('onePhoto', 'Send one picture at a time in the field "files".');
     await refuseStrange(access, input);
-    if (await FieldPhoto.query().findOne({ estateId: access.estateId, id: input.id })) return;
+    if (await FieldPhoto.query().findOne({ estateId: access.estateId, id: input.id })) return { id: input.id };
     await writeFile(upload.path, withoutRecords(await readFile(upload.path)));
     const { sha256, bytes } = await fileStore().keep(upload.path);
     await FieldPhoto.transaction(async (trx) => {
@@ -32,8 +33,18 @@ export async function keepPhoto(access: Access, input: NewFieldPhoto, uploads: r
       await FieldPhoto.query(trx).insert({ ...input, estateId: access.estateId, fileId: file.id, personId: access.personId, takenAt: new Date(input.takenAt) });
       await writeAudit(trx, access, { action: 'photos.keep', subjectType: 'photo', subjectId: input.id, after: { blockId: input.blockId, roundId: input.roundId } });
     });
+    return { id: input.id };
   } finally {
     await dropUploads(uploads);
+  }
+}
+
+/** The text that comes beside the picture. */
+function readFacts(text: unknown): unknown {
+  try {
+    return JSON.parse(typeof text === 'string' ? text : '');
+  } catch {
+    throw new Unusable('badFacts', 'Send what the photo shows as JSON in the field "facts".');
   }
 }
 

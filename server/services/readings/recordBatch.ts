@@ -9,7 +9,7 @@ import { loadBatchContext, type BatchContext } from './batchContext.ts';
 import { findConflicts } from './findConflicts.ts';
 import { matchPaperAndPhone } from './paperAndPhone.ts';
 import { clockOffMs, clockToleranceMs, refusalOf, seasonOf } from './refuseReading.ts';
-import { storeFindings } from './storeFindings.ts';
+import { storeFindings, takeBackMarks } from './storeFindings.ts';
 
 /**
  * Stores a batch of readings. Append-only and safe to repeat: a reading whose id is known is received again, never
@@ -39,6 +39,7 @@ export async function recordBatch(access: Access, input: { readings: unknown[]; 
     await insertReadings(trx, access, kept, context);
     for (const id of [...(await findConflicts(trx, access, kept)), ...(await stillOpen(trx, access, [...context.known.keys()]))]) if (outcomes.has(id)) outcomes.set(id, { id, state: 'conflict', reason: null });
     const noted = await storeFindings(trx, access, found, context);
+    await takeBackMarks(trx, access, kept.map(({ id }) => id));
     if (kept.length > 0) await writeAudit(trx, access, { action: 'readings.record', subjectType: 'readings', subjectId: kept[0]!.id, after: { count: kept.length, rounds: [...new Set(kept.map((reading) => reading.roundId))] } });
     return {
       outcomes: readings.map(({ item, outcome }) => (item ? outcomes.get(item.id)! : outcome)),

@@ -30,3 +30,13 @@ function refusalOf(finding: VineFinding, context: BatchContext): string | null {
   if (context.ownRoundsOnly && finding.roundId === null) return 'Crew record within a round that was sent to them.';
   return finding.readBy !== null && !context.readers.has(finding.readBy) ? 'Who found this is not somebody of this estate whose findings you may type.' : null;
 }
+
+/** A proposed mark goes when the person who made it reads the same vine afterwards: the mark was a slip of the thumb. */
+export async function takeBackMarks(trx: Transaction, access: Access, readingIds: readonly string[]): Promise<void> {
+  await trx.raw(
+    `delete from vines v using readings r
+     where v.proposed and r.estate_id = ? and r.id = any(?) and v.estate_id = r.estate_id and v.row_id = r.row_id and v.ordinal = r.ordinal
+       and v.noted_by = r.person_id and v.noted_at < r.taken_at`,
+    [access.estateId, [...readingIds]],
+  );
+}

@@ -96,7 +96,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(after.readings).toEqual(before.readings);
     expect(after.waiting).toBe(before.waiting);
     await recordMany(page, 1000);
-    await expect.poll(() => page.getByText('The walk is done.').count()).toBe(1);
+    await page.getByText('The walk is done.').waitFor();
     await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
     await page.getByText('You cannot sign out yet.').waitFor();
   });
@@ -131,7 +131,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await startWalk(page);
     await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
     await recordMany(page, 20);
-    await expect.poll(async () => (await heldBy(page)).waiting).toBe(0);
+    await expect.poll(async () => (await heldBy(page)).waiting, { timeout: 30_000 }).toBe(0);
     await context.setOffline(true);
     await recordMany(page, 1000);
     cleo = await heldBy(page);

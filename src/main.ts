@@ -1,6 +1,7 @@
 import { createPinia } from 'pinia';
 import PrimeVue from 'primevue/config';
 import { createApp } from 'vue';
+import type { Session } from '../shared/contracts/session.ts';
 import App from './App.vue';
 import { startTheme, useTheme } from './composables/useTheme.ts';
 import { watchForUpdate } from './lib/appUpdate.ts';
@@ -11,6 +12,7 @@ import type { Language } from './lib/format.ts';
 import { primeVueOptions } from './lib/theme.ts';
 import { totalWaiting } from './offline/waiting.ts';
 import { createAppRouter } from './router/index.ts';
+import { views } from './router/views.ts';
 import { useContactStore } from './stores/contact.ts';
 import { useNoticesStore } from './stores/notices.ts';
 import { useSessionStore } from './stores/session.ts';
@@ -27,10 +29,15 @@ async function start(): Promise<void> {
   const [session, contact] = [useSessionStore(), useContactStore()];
   whenContacted((reached) => contact.note(reached, new Date()));
 
+  // On a slow line everything that is surely needed comes at once; a wrong guess of the language costs no time.
+  const texts = showLanguage(readStored<Session>('session')?.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
+  if (location.pathname.endsWith('/field')) void views.fieldWork?.().catch(() => undefined);
+
   // Without an answer the door still opens and says so; crews go on with what their phone holds.
   await session.load().catch(() => session.recall());
   if (session.person) useTheme().choose(session.person.theme);
-  await showLanguage(session.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
+  await texts;
+  if (session.person) await showLanguage(session.person.language);
 
   const router = createAppRouter(session);
   whenSignedOut(() => {

@@ -67,14 +67,15 @@ export const useFieldStore = defineStore('field', () => {
     const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`));
     if (!fresh) return;
     const mine = fresh.items.filter(({ isMine, state }) => isMine && (state === 'sent' || state === 'open'));
-    for (const { id } of mine) {
+    // What there is to do shows at once; each round may be started as soon as it is on the phone.
+    [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
+    await Promise.all(mine.map(async ({ id }) => {
       const full = await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${id}`));
       if (full) await keepRound(owner, full, new Date());
-      await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
-    }
+      if (full?.acknowledgedAt === null) await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
+    }));
     await keepList(owner, mine, new Date());
     await dropOtherRounds(owner, mine.map(({ id }) => id));
-    [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
   }
 
   /** Opens a round from the phone; from the server only when the phone does not have it. */

@@ -70,7 +70,7 @@ export function recordMany(page: Page, most: number, options: { others?: boolean
     for (const stop of others ? field.round.others[0]!.stops : field.round.stops) {
       for (const measure of field.round.measures) {
         const isRead = field.entries.some(({ reading }) => reading?.targetId === stop.targetId && reading.measureCode === measure.code) || field.round.received.some((one) => one.targetId === stop.targetId && one.measureCode === measure.code);
-        if (isRead || done === most) continue;
+        if (isRead || done === most || !stop.measures.includes(measure.code)) continue;
         const value = measure.code === 'clusterCount' ? 20 + (stop.number % 30) + (others ? 40 : 0) : 0.5 + (stop.number % 20) / 100 + (others ? 1 : 0);
         await field.record(stop, { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false }, { measure, text: String(value), value, isOdd: false, supersedes: null, readBy: null });
         done++;

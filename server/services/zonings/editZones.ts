@@ -88,9 +88,9 @@ export async function restoreAsDraft(access: Access, zoningId: string): Promise<
     const { blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
     const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
     const candidates = await ZoningCandidate.query(trx).where({ estateId: access.estateId, zoningId: old.id });
-    await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
+    if (candidates.length > 0) await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
     const known = describingEdits(map);
-    await ZoneEditRecord.query(trx).insert(known.map((edit, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit, asked: edit }, reason: '', authorId: access.personId })));
+    if (known.length > 0) await ZoneEditRecord.query(trx).insert(known.map((edit, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit, asked: edit }, reason: '', authorId: access.personId })));
     await storeZones(trx, copy, { ground, map, drawn });
     await writeAudit(trx, access, { action: 'zones.restore', subjectType: 'zoning', subjectId: copy.id, subjectName: ground.block.name, after: { from: old.number } });
     return { id: copy.id };

@@ -1,0 +1,144 @@
+import { randomUUID } from 'node:crypto';
+import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { encodeCells } from '../../shared/analysis/cellBytes.ts';
+import { planChoices, type PlanBasis, type PlanStanding, type PlanView, type PlanWalk, type ZoneDivision } from '../../shared/contracts/plans.ts';
+import { answerPlan } from '../../shared/sampling/plan.ts';
+import { gridOf, loadBlockVines } from '../../server/ground/blockVines.ts';
+import { BlockLayer } from '../../server/models/BlockLayer.ts';
+import { Layer } from '../../server/models/Layer.ts';
+import { Reading } from '../../server/models/Reading.ts';
+import { Season } from '../../server/models/Season.ts';
+import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+
+let app: TestApp;
+let estate: Awaited<ReturnType<TestApp['addEstate']>>;
+let place: StripBlock;
+let manager: Agent;
+let crew: { id: string; email: string };
+let base: string;
+
+beforeAll(async () => {
+  app = await startTestApp();
+  openComputePool(1);
+  estate = await app.addEstate('Journey of a plan');
+  place = await makeStripBlock(estate);
+  base = `/api/estates/${estate.estateId}`;
+  manager = await app.as((await app.addPerson(estate.estateId, 'manager')).email);
+  crew = await app.addPerson(estate.estateId, 'crew', 'Nia Holt');
+});
+afterAll(async () => {
+  await closeComputePool();
+  await app.close();
+});
+beforeEach(() => app.knex.raw('truncate readings, plans, rounds, layers cascade'));
+
+const clusters = { code: 'clusterCount', marginKind: 'relative', margin: 0.1, confidence: 0.95 };
+async function sent(over: object): Promise<{ plan: PlanView; roundId: string }> {
+  const plan = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'Plan', measures: [clusters], seed: 7, ...over })).body as PlanView;
+  await manager.post(`${base}/plans/${plan.id}/lock`);
+  return { plan, roundId: (await manager.post(`${base}/plans/${plan.id}/rounds`, { onDate: '2026-07-09', people: [crew.id] })).body.id as string };
+}
+/** Readings of targets by hand, one value a vine. */
+async function read(plan: PlanView, roundId: string, values: (target: PlanView['targets'][number]) => number | null): Promise<void> {
+  const season = await Season.query().where({ estateId: estate.estateId }).first().throwIfNotFound();
+  const rows = plan.targets.flatMap((target) => {
+    const value = values(target);
+    return value === null ? [] : [{ id: randomUUID(), estateId: estate.estateId, seasonId: season.id, blockId: place.blockId, rowId: target.rowId, ordinal: target.ordinal, roundId, targetId: target.id, measureCode: 'clusterCount', value, unit: 'clusters', takenAt: new Date('2026-07-09T09:00:00Z'), source: 'field' as const, flags: [] }];
+  });
+  await Reading.query().insert(rows);
+}
+const basis = async () => (await manager.get(`${base}/zonings/${place.zoningId}/plan-basis`)).body as PlanBasis;
+
+describe('a pilot', () => {
+  it('is told of while it is out, and its spread decides by the two-stage rule when it is read', async () => {
+    const { plan, roundId } = await sent({ name: 'Pilot', isPilot: true, pilotVines: 30 });
+    expect(await basis()).toMatchObject({ pilot: { planId: plan.id, name: 'Pilot', vines: 30, read: 0 } });
+    const counts = [20, 24, 28, 32, 26, 30, 22, 27, 25, 29];
+    await read(plan, roundId, ({ zone, drawOrder }) => (zone === 1 ? counts[(drawOrder - 1) % 10]! : null));
+    const after = await basis();
+    const [first, second] = after.measures.find(({ code }) => code === 'clusterCount')!.pilots;
+    expect(after.pilot).toMatchObject({ read: 10 });
+    // Mean 26.3, variance 13.5667 (n − 1), checked with R: coefficient of variation 0.140050.
+    expect(first).toMatchObject({ n: 10, df: 9 });
+    expect(first!.spread).toBeCloseTo(0.14005, 4);
+    expect(second).toBeNull();
+    // Stein 1945: (2.262157 · 0.14005 / 0.1)² = 10.04 → 11.
+    const answer = answerPlan(after, planChoices.parse({ measures: [clusters], afterPilot: true }));
+    expect(answer.counts.zones[0]!.visits).toBe(11);
+    const made = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'After', measures: [clusters], afterPilot: true })).body as PlanView;
+    expect(made.draw[0]!.drawn).toBe(11);
+  });
+});
+
+describe('where a plan stands', () => {
+  it('says enough, so many more, or too early by the rule of the phone', async () => {
+    const { plan, roundId } = await sent({ measures: [{ ...clusters, margin: 0.12 }] });
+    const few = [25, 26, 24, 27, 25, 26];
+    await read(plan, roundId, ({ zone, drawOrder }) => {
+      if (zone === 1) return drawOrder <= 12 ? few[drawOrder % 6]! : null;
+      if (zone === 2) return drawOrder <= 10 ? 10 + ((drawOrder * 7) % 30) : null;
+      return drawOrder <= 3 ? 20 + drawOrder : null;
+    });
+    const { items } = (await manager.get(`${base}/plans/${plan.id}/standing`)).body as { items: PlanStanding[] };
+    expect(items.map(({ zone, say, n }) => [zone, say, n])).toEqual([[1, 'enough', 12], [2, 'goOn', 10], [3, 'walkOn', 3]]);
+    expect(items[1]!.more).toBeGreaterThan(0);
+    expect(items[0]!.halfWidth).toBeLessThan(items[0]!.margin!);
+  });
+});
+
+describe('the walk of a plan', () => {
+  it('is shorter when it may end anywhere, is shared evenly, and begins where one says', async () => {
+    const { plan } = await sent({});
+    const walk = async (query: string) => (await manager.get(`${base}/plans/${plan.id}/walk${query}`)).body as PlanWalk;
+    const [closed, open, two] = [await walk(''), await walk('?end=anywhere'), await walk('?people=2')];
+    expect(closed.people[0]!.targetIds.length).toBe(plan.targets.length);
+    expect(closed.people[0]!.lengthM).toBeCloseTo(plan.walk!.lengthM, 6);
+    expect(open.people[0]!.lengthM).toBeLessThan(closed.people[0]!.lengthM);
+    expect(two.people.flatMap(({ targetIds }) => targetIds).sort()).toEqual(plan.targets.map(({ id }) => id).sort());
+    const loads = two.people.map(({ walkingS, serviceS }) => walkingS + serviceS);
+    expect(two.isEven && Math.max(...loads) / Math.min(...loads)).toBeLessThanOrEqual(1.15);
+    const [lon, lat] = plan.targets.at(-1)!.position;
+    const elsewhere = await walk(`?gate=${lon},${lat}`);
+    expect(elsewhere.gate[0]).toBeCloseTo(lon, 6);
+    expect(elsewhere.isGateAssumed).toBe(false);
+    expect((await manager.get(`${base}/plans/${plan.id}/walk?gate=here`)).status).toBe(422);
+  });
+});
+
+describe('a plan that asks for too much', () => {
+  it('is offered a division along a layer when the readings say two populations, and the zone editor takes it', async () => {
+    const ground = await loadBlockVines(estate.estateId, place.blockId);
+    const grid = gridOf(ground);
+    // The layer rises along the rows; low counts below its middle, high counts above.
+    const cells = Float32Array.from({ length: grid.cols * grid.rows }, (_, cell) => grid.rows - Math.floor(cell / grid.cols));
+    const layer = await Layer.query().insertAndFetch({ estateId: estate.estateId, type: 'conductivity', name: 'Survey of spring', unit: 'mS/m', source: {} });
+    await BlockLayer.query().insert({ estateId: estate.estateId, layerId: layer.id, blockId: place.blockId, gridKey: grid.key, cells: Buffer.from(encodeCells(cells)), coverage: 1, statistics: {} as never, findings: [] });
+    const season = await Season.query().where({ estateId: estate.estateId }).first().throwIfNotFound();
+    const rows = place.rows.slice(2, 12);
+    await Reading.query().insert(rows.flatMap((row, i) => [8, 16, 24, 60, 68, 76].map((ordinal) => ({
+      id: randomUUID(), estateId: estate.estateId, seasonId: season.id, blockId: place.blockId, rowId: row.id, ordinal, measureCode: 'clusterCount', value: (ordinal < 42 ? 15 : 40) + ((i * 3 + ordinal) % 5), unit: 'clusters', takenAt: new Date('2026-07-09T09:00:00Z'), source: 'field' as const, flags: [],
+    }))));
+    const choices = { measures: [{ ...clusters, margin: 0.08 }], limits: { visitsPerZone: 40 } };
+    const { items } = (await manager.post(`${base}/zonings/${place.zoningId}/divisions`, { choices })).body as { items: ZoneDivision[] };
+    const division = items.find(({ zone }) => zone === '1')!;
+    expect(division).toMatchObject({ layerName: 'Survey of spring', measureCode: 'clusterCount', newZone: 4 });
+    expect(division.division.recommended).toBe(true);
+    expect(Math.abs(division.means[0] - division.means[1])).toBeGreaterThan(15);
+    const answer = answerPlan(await basis(), planChoices.parse(choices), items);
+    expect(answer.advice!.options.find(({ kind }) => kind === 'divideZone')).toMatchObject({ zone: '1', recommended: true, layerName: 'Survey of spring' });
+
+    await app.knex.raw('update zonings set base_labels = labels where id = ?', [place.zoningId]);
+    const draft = (await manager.post(`${base}/zonings/${place.zoningId}/restore`)).body as { id: string };
+    const { revision } = (await manager.get(`${base}/zonings/${draft.id}`)).body as { revision: number };
+    const edited = await manager.post(`${base}/zonings/${draft.id}/edits`, { operation: { kind: 'giveRows', toZone: division.newZone, rows: division.rows }, reason: 'Too many samples', revision });
+    expect(edited.status, edited.text).toBe(201);
+    expect((edited.body as { zones: { number: number }[] }).zones.map(({ number }) => number)).toEqual([1, 2, 3, 4]);
+  });
+
+  it('is offered none where there is nothing to judge by', async () => {
+    const answer = await manager.post(`${base}/zonings/${place.zoningId}/divisions`, { choices: { measures: [{ ...clusters, margin: 0.03 }] } });
+    expect(answer.body).toEqual({ items: [] });
+  });
+});

@@ -77,6 +77,8 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}. ${texts.start}: ${round.gate || '-'}`, { width });
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
   if (round.notes) pdf.text(round.notes, { width });
+  const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}: ${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
+  if (handfuls.length > 0) pdf.text(`${texts.ofEach}: ${handfuls.join('; ')}`, { width });
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);
   drawSafety(pdf, { round, texts, language, timeZone });
@@ -130,7 +132,7 @@ function columnsOf(pdf: PDFKit.PDFDocument, { round, language }: SheetPart): Col
 }
 
 /** The measure in the reader's language; a unit that only repeats the name is left out. */
-function headOf({ code, name, unit }: FieldRound['measures'][number], language: SheetLanguage): string {
+function headOf({ code, name, unit }: Pick<FieldRound['measures'][number], 'code' | 'name' | 'unit'>, language: SheetLanguage): string {
   const word = measureWords[language]?.[code] ?? (name || code);
   return unit === 'clusters' || unit === 'berries' || word.includes(unit) ? word : `${word}, ${unit}`;
 }

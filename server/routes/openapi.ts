@@ -8,7 +8,7 @@ import { newNotice } from '../../shared/contracts/notices.ts';
 import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
 import { newTicket, reviewView } from '../../shared/contracts/tickets.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
-import { divisionQuestion, newPlan, planBasis, planChange, planRedraw, planStanding, planView, planWalk, zoneDivision } from '../../shared/contracts/plans.ts';
+import { dayQuestion, dayWalk, divisionQuestion, newPlan, planBasis, planChange, planRedraw, planStanding, planView, planWalk, zoneDivision } from '../../shared/contracts/plans.ts';
 import { asideReading, blockLayerView, cleaningChange, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
@@ -104,6 +104,7 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}/plans/{planId}', summary: 'Change a draft plan', body: planChange, answer: planView },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/lock', summary: 'Keep the vines of a plan as drawn', answer: planView },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/redraw', summary: 'Draw other vines, with a reason', body: planRedraw, answer: planView },
+  { method: 'post', path: '/api/estates/{estateId}/plans/day', summary: 'Plans of several blocks in the quickest order from gate to gate', body: dayQuestion, answer: dayWalk },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/walk', summary: 'The walk past the vines from a gate, shared among people, as lines on the map', answer: planWalk },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/standing', summary: 'How far each zone is with what was read: enough here, or so many more', answer: z.object({ items: z.array(planStanding) }) },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/divisions', summary: 'Zones that a plan asks too much of, divided where their readings say that this saves work', body: divisionQuestion, answer: z.object({ items: z.array(zoneDivision) }) },

@@ -1,8 +1,9 @@
 import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { divisionQuestion, newPlan, planChange, planRedraw, walkQuestion } from '../../shared/contracts/plans.ts';
+import { dayQuestion, divisionQuestion, newPlan, planChange, planRedraw, walkQuestion } from '../../shared/contracts/plans.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import { dayOfPlans } from '../services/plans/dayOfPlans.ts';
 import { divisionsOf } from '../services/plans/divisions.ts';
 import { exportPlan } from '../services/plans/exportPlan.ts';
 import { planBasisOf } from '../services/plans/planBasis.ts';
@@ -36,6 +37,9 @@ export function planRoutes(): Router {
     const { block } = filter.parse(request.query);
     const items = await listPlans(accessOf(request), block ? { blockId: block } : {});
     response.json({ items, total: items.length, zonings: await plannableZonings(accessOf(request)) });
+  });
+  router.post('/plans/day', read, async (request, response) => {
+    response.json(await dayOfPlans(accessOf(request), dayQuestion.parse(request.body)));
   });
   router.get('/plans/:planId', read, async (request, response) => {
     response.json(await viewPlan(accessOf(request), idParam(request, 'planId')));

@@ -104,6 +104,7 @@ export const basisMeasure = z.object({
   secondsPerSample: z.number(),
   skewed: z.boolean(),
   measuredIn: z.enum(['field', 'lab']),
+  sampledUnit: z.string().default('vine'),
   tradeSource: z.string(),
   /** One a zone, in the order of the zones. */
   spreads: z.array(basisSpread),
@@ -256,3 +257,15 @@ export type PlannableZoning = z.infer<typeof plannableZoning>;
 /** Plans of the estate, and the zones in force that a plan can be made on. */
 export const planList = z.object({ items: z.array(planSummary), total: z.number().int(), zonings: z.array(plannableZoning) });
 export type PlanList = z.infer<typeof planList>;
+
+/** Plans to walk on one day, at the speed between their gates. */
+export const dayQuestion = z.object({
+  plans: z.array(id).min(2, 'Choose at least two plans.').max(12, 'At most twelve blocks a day.').refine((list) => new Set(list).size === list.length, 'Each plan once.'),
+  kmPerHour: z.number().min(1).max(100).default(15),
+  keepOrder: z.boolean().default(false),
+});
+export const dayWalk = z.object({
+  blocks: z.array(z.object({ planId: id, planName: z.string(), blockName: z.string(), vines: z.number().int(), seconds: z.number(), travelS: z.number(), gate: lonLat })),
+  totalS: z.number(),
+});
+export type DayWalk = z.infer<typeof dayWalk>;

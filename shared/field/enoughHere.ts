@@ -44,7 +44,8 @@ export function standingOf(round: { readonly stops: readonly StandingStop[]; rea
 
 function sayOf({ decision, more }: StoppingState): ZoneStanding['say'] {
   if (decision === 'enough' || decision === 'everyVineRead') return 'enough';
-  return more === null || decision === 'tooFewYet' ? 'walkOn' : 'goOn';
+  // The width may be there already, but of vines that are no random part: nothing can be left out, and nothing is missing.
+  return more === null || more === 0 || decision === 'tooFewYet' ? 'walkOn' : 'goOn';
 }
 
 /** One value a vine: the last one typed counts. */

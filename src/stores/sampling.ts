@@ -2,7 +2,7 @@ import { defineStore } from 'pinia';
 import type { z } from 'zod';
 import type { MeasureChange, MeasureView, newMeasure } from '../../shared/contracts/measures.ts';
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
-import type { NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { DayWalk, NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, ZoneDivision } from '../../shared/contracts/plans.ts';
 import type { FieldRound, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PersonView } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
@@ -26,6 +26,7 @@ export const useSamplingStore = defineStore('sampling', () => {
 
   const divisions = (estateId: string, zoningId: string, choices: PlanChoices) => http.post<Listed<ZoneDivision>>(`${base(estateId)}/zonings/${zoningId}/divisions`, { choices });
   const walk = (estateId: string, planId: string, asked: { people: number; end: 'gate' | 'anywhere'; gate: string | null }) => http.get<PlanWalk>(`${base(estateId)}/plans/${planId}/walk`, { query: asked });
+  const day = (estateId: string, asked: { plans: string[]; kmPerHour: number }) => http.post<DayWalk>(`${base(estateId)}/plans/day`, asked);
   const standing = async (estateId: string, planId: string) => (await http.get<Listed<PlanStanding>>(`${base(estateId)}/plans/${planId}/standing`)).items;
 
   const rounds = async (estateId: string, planId?: string) => (await http.get<Listed<RoundSummary>>(`${base(estateId)}/rounds`, { query: { plan: planId } })).items;
@@ -44,5 +45,5 @@ export const useSamplingStore = defineStore('sampling', () => {
   const rows = (estateId: string, blockId: string) => http.get<BlockRowsView>(`${base(estateId)}/blocks/${blockId}/rows`);
   const people = async (estateId: string) => (await http.get<Listed<PersonView>>(`${base(estateId)}/people`)).items;
 
-  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, callOff, sheet, labels, blankLabels, divisions, walk, standing, measures, addMeasure, changeMeasure, rows, people };
+  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, callOff, sheet, labels, blankLabels, divisions, walk, day, standing, measures, addMeasure, changeMeasure, rows, people };
 });

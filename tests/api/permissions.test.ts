@@ -128,6 +128,7 @@ const doors: Door[] = [
   door('post', `/plans/${nobody}/lock`, 'plans.draw'),
   door('post', `/plans/${nobody}/redraw`, 'plans.draw'),
   door('post', `/zonings/${nobody}/divisions`, 'plans.margins', 'propose'),
+  door('post', '/plans/day', 'plans.margins', 'propose'),
   door('get', `/plans/${nobody}/walk`, 'plans.margins', 'propose'),
   door('get', `/plans/${nobody}/standing`, 'plans.margins', 'propose'),
   door('get', `/plans/${nobody}/export`, 'plans.margins', 'propose'),

@@ -1,7 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { encodeCells } from '../../shared/analysis/cellBytes.ts';
-import { planChoices, type PlanBasis, type PlanStanding, type PlanView, type PlanWalk, type ZoneDivision } from '../../shared/contracts/plans.ts';
+import { planChoices, type DayWalk, type PlanBasis, type PlanStanding, type PlanView, type PlanWalk, type ZoneDivision } from '../../shared/contracts/plans.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { gridOf, loadBlockVines } from '../../server/ground/blockVines.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
@@ -104,6 +104,24 @@ describe('the walk of a plan', () => {
     expect(elsewhere.gate[0]).toBeCloseTo(lon, 6);
     expect(elsewhere.isGateAssumed).toBe(false);
     expect((await manager.get(`${base}/plans/${plan.id}/walk?gate=here`)).status).toBe(422);
+  });
+});
+
+describe('a day over several blocks', () => {
+  it('takes the blocks in the order that saves most on the way', async () => {
+    const [near, far] = [await makeStripBlock(estate, { name: 'Near', x: 300 }), await makeStripBlock(estate, { name: 'Far', x: 1500 })];
+    const made: PlanView[] = [];
+    for (const zoningId of [near.zoningId, place.zoningId, far.zoningId]) made.push((await manager.post(`${base}/zonings/${zoningId}/plans`, { name: 'Day', measures: [clusters], seed: 4 })).body as PlanView);
+    const day = (await manager.post(`${base}/plans/day`, { plans: made.map(({ id }) => id), kmPerHour: 10 })).body as DayWalk;
+    // Three blocks on a line: the one in the middle is never first or last.
+    expect(day.blocks[1]!.blockName).toBe('Near');
+    expect(day.blocks[0]!.travelS).toBe(0);
+    // About 300 m + 1200 m from gate to gate, a third longer than straight, at 10 km/h.
+    const onTheWay = day.blocks.reduce((sum, { travelS }) => sum + travelS, 0);
+    expect(Math.abs(onTheWay - (1500 * 1.3 * 3.6) / 10)).toBeLessThan(120);
+    expect(day.totalS).toBeCloseTo(onTheWay + day.blocks.reduce((sum, { seconds }) => sum + seconds, 0), 6);
+    expect((await manager.post(`${base}/plans/day`, { plans: [made[0]!.id] })).status).toBe(422);
+    expect((await manager.post(`${base}/plans/day`, { plans: [made[0]!.id, randomUUID()] })).status).toBe(404);
   });
 });
 

@@ -71,7 +71,7 @@ describe('enough here', () => {
   });
 
   it('never lets one stop on vines that are not the first of the draw', () => {
-    expect(standingOf({ stops, zones }, measure, 1, read(16, 2)).say).toBe('goOn');
+    expect(standingOf({ stops, zones }, measure, 1, read(16, 2)).say).toBe('walkOn');
   });
 
   it('counts a corrected value once, the last one typed', () => {

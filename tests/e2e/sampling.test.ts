@@ -1,0 +1,118 @@
+import { randomUUID } from 'node:crypto';
+import { readFileSync } from 'node:fs';
+import type { Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import type { PlanView } from '../../shared/contracts/plans.ts';
+import { startApplication, type Application } from './support/application.ts';
+
+let app: Application;
+let page: Page;
+let estateId = '';
+const blockName = 'Long Furrow';
+
+beforeAll(async () => {
+  app = await startApplication();
+  ({ page, estateId } = await app.signIn('manager'));
+  await page.setViewportSize({ width: 1440, height: 1400 });
+}, 600_000);
+afterAll(() => app?.close());
+
+async function newPlan(): Promise<void> {
+  await page.goto(`${app.url}/e/${estateId}/sampling`);
+  await page.locator('select').first().selectOption({ label: blockName });
+  await page.getByRole('link', { name: 'New plan' }).click();
+  await page.getByRole('button', { name: 'Draw the vines' }).waitFor();
+}
+const heading = () => page.locator('h1').innerText();
+async function vinesAsked(): Promise<number> {
+  return Number(/^([\d  ]+) vines?/u.exec(await heading())![1]!.replace(/\D/gu, ''));
+}
+/** Only this measure in the plan. */
+async function measureOnly(name: string): Promise<void> {
+  await page.getByRole('button', { name: 'Other measures' }).click();
+  await page.getByRole('checkbox', { name: `${name} in the plan` }).check();
+  await page.getByRole('checkbox', { name: 'Clusters per vine in the plan' }).uncheck();
+}
+async function drawAndLock(): Promise<string> {
+  await page.getByRole('button', { name: 'Draw the vines' }).click();
+  await page.getByRole('button', { name: 'Lock plan' }).click();
+  await page.getByRole('dialog').getByRole('button', { name: 'Lock plan' }).click();
+  await page.waitForURL(/\/targets$/);
+  return /plans\/([0-9a-f-]{36})/.exec(page.url())![1]!;
+}
+async function send(): Promise<void> {
+  await page.getByText('Nuno Alvor').first().click();
+  await page.getByRole('button', { name: /^Send/ }).click();
+  await page.getByText(/has a mail with the round/).waitFor();
+}
+async function download(button: string): Promise<string> {
+  const [file] = await Promise.all([page.waitForEvent('download'), page.getByRole('button', { name: button, exact: true }).click()]);
+  return readFileSync((await file.path())!).toString('latin1');
+}
+
+describe('from a pilot to paper', () => {
+  it('nobody knows a spread: a pilot is advised, drawn, locked and sent', async () => {
+    await newPlan();
+    await measureOnly('Pruning weight');
+    await page.getByText('A pilot is advised').waitFor();
+    await page.getByRole('button', { name: 'Make this a pilot' }).click();
+    expect(await vinesAsked()).toBe(20);
+    const planId = await drawAndLock();
+    await send();
+    const plan = (await (await page.request.get(`${app.url}/api/estates/${estateId}/plans/${planId}`)).json()) as PlanView;
+    const { items } = (await (await page.request.get(`${app.url}/api/estates/${estateId}/rounds?plan=${planId}`)).json()) as { items: { id: string }[] };
+    const { csrfToken } = (await (await page.request.get(`${app.url}/api/session`)).json()) as { csrfToken: string };
+    const readings = plan.targets.map((target, i) => ({ id: randomUUID(), blockId: plan.blockId, roundId: items[0]!.id, targetId: target.id, rowId: target.rowId, ordinal: target.ordinal, measureCode: 'pruningWeight', value: 0.7 + ((i * 7) % 5) / 20, unit: 'kg', takenAt: new Date().toISOString() }));
+    const answer = await page.request.post(`${app.url}/api/estates/${estateId}/readings`, { headers: { 'x-csrf-token': csrfToken }, data: { readings } });
+    expect(answer.ok(), await answer.text()).toBe(true);
+  });
+
+  it('the pilot is read: its spread replaces the guess by the two-stage rule, and the working is shown', async () => {
+    await newPlan();
+    await measureOnly('Pruning weight');
+    await page.getByText(/has been read$/).waitFor();
+    await page.getByRole('button', { name: 'Plan with the pilot' }).click();
+    await page.getByText(/^Planned with/).waitFor();
+    await page.getByText(/^The pilot, n \d+$/).first().waitFor();
+    await page.getByRole('button', { name: 'Show', exact: true }).first().click();
+    await page.getByText('n = max(n₁, ⌈(t · s₁ / E)²⌉)').waitFor();
+    await page.getByText(/Stein 1945/).waitFor();
+  });
+
+  it('a margin too tight asks for too much: what would help is said in figures, and a division goes to the zone editor', async () => {
+    await newPlan();
+    await page.getByRole('textbox', { name: 'Margin for Clusters per vine' }).first().fill('5');
+    await page.keyboard.press('Tab');
+    await page.getByText(/needs? more than 60 vines/).waitFor();
+    await page.getByText(/Margins \d+ % wider/).waitFor();
+    const divide = page.getByRole('button', { name: 'Divide in a draft' }).first();
+    await divide.click();
+    await page.getByRole('dialog').getByRole('button', { name: 'Divide in a draft' }).click();
+    await page.waitForURL(/\/zonings\/[0-9a-f-]{36}\/edit$/);
+    await page.getByText(/asked for too many samples; divided along/).first().waitFor();
+    await page.getByRole('button', { name: /Publish version/ }).click();
+    await page.waitForURL(/\/zones$/);
+  });
+
+  it('a plan on the divided zones is locked, walked on the map by two, and printed as sheet and labels', async () => {
+    await newPlan();
+    expect(await page.getByRole('table').filter({ hasText: 'Expected result' }).getByRole('row').count()).toBeGreaterThanOrEqual(5);
+    await page.getByRole('button', { name: 'Other measures' }).click();
+    await page.getByRole('checkbox', { name: '°Brix in the plan' }).check();
+    await drawAndLock();
+    await page.getByText(/^Walk 1: \d+ vines/).waitFor();
+    await page.locator('.estate-map[data-ready="true"]').waitFor();
+    await page.getByRole('textbox', { name: 'People' }).fill('2');
+    await page.keyboard.press('Tab');
+    await page.getByText(/^Walk 2: \d+ vines/).waitFor();
+    await page.getByText('The loads lie within 15 % of each other.').waitFor();
+    await send();
+    await page.getByRole('table').filter({ hasText: 'Nuno Alvor' }).getByText('Nuno Alvor').first().click();
+    const sheet = await download('Sheet, A4');
+    expect(sheet.startsWith('%PDF-')).toBe(true);
+    const labels = await download('Single labels');
+    const brix = (await (await page.request.get(`${app.url}/api/estates/${estateId}/plans/${/plans\/([0-9a-f-]{36})/.exec(page.url())![1]}`)).json()) as PlanView;
+    expect(labels.match(/\/Type \/Page\b/gu)).toHaveLength(brix.targets.filter(({ measures }) => measures.includes('brix')).length);
+    await page.getByText('Go on as planned').first().waitFor();
+  });
+});

@@ -83,7 +83,8 @@ describe.each(themes)('in the %s theme', (theme) => {
         await page.screenshot({ path: join(picturesFolder, `${name}-${size.width}-${theme}.png`) });
       }
     }
-    expect([...found, ...faults.filter((fault) => name !== 'join' || !fault.includes('404'))]).toEqual([]);
+    // A link that has ended is looked at as such; the browser notes the answer.
+    expect([...found, ...faults.filter((fault) => place.role !== 'nobody' || !/404|410/.test(fault))]).toEqual([]);
   });
 });
 

@@ -30,6 +30,7 @@ export async function findIds(request: APIRequestContext, url: string, estateId:
     roundId: await first('/rounds'),
     lotId: await first('/lots', 'lots'),
     token: 'a-link-that-has-ended',
+    code: '00000000-0000-4000-8000-000000000000',
     rest: 'nowhere',
   };
 }

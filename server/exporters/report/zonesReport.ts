@@ -1,5 +1,7 @@
 import { drawMap, drawSwatch } from './reportMap.ts';
 import { closePage, faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, printable, table, type Column, type Page } from './reportPage.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
+import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
 import type { ReportLayer, ZoneReport } from './zoneReport.ts';
 
@@ -63,8 +65,13 @@ function verdictOf({ verdict, isJudged, advisedZones }: ZoneReport, texts: Repor
   return isJudged ? said : `${said} ${texts.verdict.notJudged}`;
 }
 
-function reasonsOf({ reasons, layers }: ZoneReport, texts: ReportTexts): string[] {
-  return reasons.map(({ code, about }) => filled(texts.reason[code] ?? '', { about: layers.find(({ layerId }) => layerId === about)?.name ?? about ?? '' })).filter((text) => text !== '');
+/** One sentence a reason; several measures that say the same are named in one. */
+function reasonsOf({ reasons, layers, language }: ZoneReport, texts: ReportTexts): string[] {
+  const nameOf = (about: string) => layers.find(({ layerId }) => layerId === about)?.name ?? reportMeasures[language][about] ?? about;
+  const list = new Intl.ListFormat(language, { type: 'conjunction' });
+  return [...groupBy(reasons, ({ code }) => code)]
+    .map(([code, same]) => filled(texts.reason[code] ?? '', { about: list.format(same.flatMap(({ about }) => (about === null ? [] : [nameOf(about)]))) }))
+    .filter((text) => text !== '');
 }
 
 function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figure }: Words): string[] {

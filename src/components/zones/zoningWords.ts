@@ -30,7 +30,8 @@ export function agreementWord(adjustedRand: number): 'same' | 'much' | 'partly' 
 function reasonWords(zoning: ZoningView, code: string, { t, format }: { t: Translate; format: Format }): string {
   const reason = zoning.reasons.find((candidate) => candidate.code === code)!;
   const figures = Object.fromEntries(Object.entries(reason.figures).map(([name, value]) => [name, value === null ? '' : format.number(value, 2)]));
-  const about = zoning.layers.find((layer) => layer.layerId === reason.about)?.name ?? (reason.about === null ? '' : t(`zones.fruit.${reason.about}`));
+  const nameOf = (id: string) => zoning.layers.find((layer) => layer.layerId === id)?.name ?? t(`zones.fruit.${id}`);
+  const about = format.list(zoning.reasons.flatMap((other) => (other.code === code && other.about !== null ? [nameOf(other.about)] : [])));
   return t(`zones.reason.${code}`, { ...figures, about });
 }
 

@@ -110,8 +110,8 @@ const elementType = 1;
 const textType = 2;
 const attributeType = 6;
 const spoken = new Set(['aria-label', 'title', 'placeholder', 'alt', 'label', 'note', 'answer', 'rest', 'above', 'below', 'caption', 'help', 'do-it', 'unit']);
-/** Names that are the same in every language. */
-const proper = /^(Patchrow,?|GeoJSON|KML|GPX|CSV|PDF|GeoTIFF|pH)$/;
+/** Names and units that are the same in every language. */
+const proper = /^(Patchrow,?|GeoJSON|KML|GPX|CSV|PDF|GeoTIFF|pH|°Brix|km\/h)$/;
 const isWords = (text: string) => /\p{L}{2,}/u.test(text) && !proper.test(text.trim());
 
 function inlineWords(node: TemplateNode): string[] {

@@ -78,7 +78,7 @@ describe('from results to the season’s review', () => {
     await page.getByLabel('Who picks').fill('north gang, 8 people');
     await page.getByRole('button', { name: 'Keep changes' }).click();
     await page.getByText(`“${lotName}” was kept.`).waitFor();
-    await page.getByText(/chance it fits T/).first().waitFor();
+    await expect.poll(() => page.locator('[data-line="tank"]').allInnerTexts()).toContainEqual(expect.stringMatching(/chance it fits/));
     await page.getByRole('button', { name: `Confirm ${lotName}` }).click();
     await page.getByRole('dialog').getByRole('button', { name: 'Confirm a lot' }).click();
     await page.getByText(`Lot “${lotName}” is confirmed.`).waitFor();

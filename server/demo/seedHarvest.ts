@@ -23,9 +23,9 @@ export async function seedHarvest(made: DemoEstate, options: { days: DemoDays; n
   await readNotice({ estateId: made.estateId, personId: made.personOf('manager'), roles: ['manager'] }, id, days.at(-5, 10));
   const manager: Access = { estateId: made.estateId, personId: made.personOf('manager'), roles: ['manager'] };
   const load = (ticketNo: string, gross: number, hour: number) => enterTicket(manager, { lotId: lot.id, ticketNo, gross, tare: 3120, unit: 'kg', weighedAt: days.at(-3, hour).toISOString(), split: [], corrects: null, note: '' }, days.at(-3, hour + 1));
-  await load('M-0411', 5980, 9);
-  await load('M-0412', 5610, 11);
-  await enterCellarResult(access, lot.id, { mustL: 3390, wineL: null, tankBrix: 21.6, leftOutKg: 140, note: '' }, days.at(-2, 10));
+  await load('M-0411', 7340, 9);
+  await load('M-0412', 7015, 11);
+  await enterCellarResult(access, lot.id, { mustL: 5030, wineL: null, tankBrix: 23.5, leftOutKg: 140, note: '' }, days.at(-2, 10));
 }
 
 const seasonDays = 240;

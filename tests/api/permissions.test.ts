@@ -1,8 +1,12 @@
+import { mkdtempSync, rmSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { may, type Permission, type Reach } from '../../shared/catalog/permissions.ts';
 import { roles, type Role } from '../../shared/catalog/roles.ts';
 import { routesOf } from './support/routesOf.ts';
 import { layOneOfEach, notIds, tableOf } from './support/strangers.ts';
+import { openFileStore } from '../../server/storage/fileStore.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
 const nobody = '00000000-0000-4000-8000-000000000000';
@@ -186,12 +190,18 @@ let app: TestApp;
 let estateId: string;
 const agents = new Map<Role, Agent>();
 
+let filesFolder = '';
 beforeAll(async () => {
   app = await startTestApp();
+  filesFolder = mkdtempSync(join(tmpdir(), 'patchrow-doors-'));
+  await openFileStore(filesFolder);
   ({ estateId } = await app.addEstate());
   for (const role of roles) agents.set(role, await app.as((await app.addPerson(estateId, role)).email));
 });
-afterAll(() => app.close());
+afterAll(async () => {
+  await app.close();
+  rmSync(filesFolder, { recursive: true, force: true });
+});
 
 describe.each(doors)('$method $path asks for $action ($atLeast)', ({ method, path, action, atLeast }) => {
   it.each(roles)('%s', async (role) => {

@@ -3,6 +3,7 @@ import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
 import { cleaningChange, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import { layersBeside } from '../services/layers/beside.ts';
 import { readCells, readRelief } from '../services/layers/cells.ts';
 import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
 import { changeCleaning, readAside } from '../services/layers/survey.ts';
@@ -35,6 +36,11 @@ export function layerRoutes(): Router {
 
   router.get('/layers/:layerId/aside', allow('estate.see', 'read'), async (request, response) => {
     const items = await readAside(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    response.json({ items, total: items.length });
+  });
+
+  router.get('/layers/:layerId/beside', allow('estate.see', 'read'), async (request, response) => {
+    const items = await layersBeside(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
     response.json({ items, total: items.length });
   });
 

@@ -9,7 +9,7 @@ import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
 import { newTicket, reviewView } from '../../shared/contracts/tickets.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
 import { dayQuestion, dayWalk, divisionQuestion, newPlan, planBasis, planChange, planRedraw, planStanding, planView, planWalk, zoneDivision } from '../../shared/contracts/plans.ts';
-import { asideReading, blockLayerView, cleaningChange, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
+import { asideReading, blockLayerView, cleaningChange, layerBeside, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
 import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
@@ -65,6 +65,7 @@ const operations: Operation[] = [
   { method: 'get', path: '/api/estates/{estateId}/layers/{layerId}/cells', summary: 'Cells of a layer on a block (?block=), bytes; the grid is in the header x-grid' },
   { method: 'patch', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Change name, unit, day or legend of a layer', body: layerChange },
   { method: 'get', path: '/api/estates/{estateId}/layers/{layerId}/aside', summary: 'Readings that were set aside on a block (?block=), with place and reason', answer: z.object({ items: z.array(asideReading), total: z.int() }) },
+  { method: 'get', path: '/api/estates/{estateId}/layers/{layerId}/beside', summary: 'The other layers on a block (?block=): how alike they are, and how far those of its kind lie off', answer: z.object({ items: z.array(layerBeside), total: z.int() }) },
   { method: 'put', path: '/api/estates/{estateId}/layers/{layerId}/cleaning', summary: 'Take reasons for setting readings aside back; the layer is made anew', body: cleaningChange, answer: z.object({ jobId: z.uuid() }) },
   { method: 'post', path: '/api/estates/{estateId}/layers/{layerId}/override', summary: 'Use a layer in spite of red findings, with a reason', body: overrideChange },
   { method: 'delete', path: '/api/estates/{estateId}/layers/{layerId}', summary: 'Take a layer out of use' },

@@ -7,6 +7,7 @@ type Computation = (input: never, progress: Progress) => unknown;
 /** One row a computation that runs in a thread; each loads its code when first asked for. */
 const computations = {
   labFile: async () => (await import('../importers/lab/readLabFile.ts')).readLabFile,
+  compareLayers: async () => (await import('./compareLayers.ts')).compareLayers,
   describeFile: async () => (await import('../placing/describeFile.ts')).describeFile,
   outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,
   placeFile: async () => (await import('../placing/placeFile.ts')).placeFile,

@@ -21,15 +21,19 @@ export function semivariance({ nugget, partialSill, shape, rangeM }: VariogramMo
   return distanceM === 0 ? 0 : nugget + partialSill * rise(shape, distanceM / rangeM);
 }
 
+/** Ranges after which a curve has levelled off. */
+const levelAt = { spherical: 1, exponential: 3, smooth: 4.74 } as const;
+
 /** Distance beyond which readings tell nothing of each other. */
 export function practicalRangeM({ shape, rangeM }: VariogramModel): number {
-  return rangeM * { spherical: 1, exponential: 3, smooth: 4.74 }[shape];
+  return rangeM * levelAt[shape];
 }
 
 /** The curve that fits best; null where values do not vary or there are too few distances. */
 export function fitVariogram(bins: readonly VariogramBin[], shapes: readonly VariogramModel['shape'][] = ['spherical', 'exponential', 'smooth']): VariogramModel | null {
   if (bins.length < 3 || bins.every(({ gamma }) => gamma <= 0)) return null;
-  const fits = shapes.map((shape) => bestRange(bins, shape));
+  // A smooth curve without a nugget says that readings have no error, and promises far more than they can keep.
+  const fits = shapes.map((shape) => bestRange(bins, shape)).filter(({ model }) => model.shape !== 'smooth' || model.nugget > 0);
   return fits.reduce((best, fit) => (fit.misfit < best.misfit ? fit : best)).model;
 }
 
@@ -47,9 +51,9 @@ interface Fit {
 const rangeSteps = 60;
 const goldenShare = (Math.sqrt(5) - 1) / 2;
 
-/** Ranges from the shortest distance to twice the longest, then a golden section around the best of them. */
+/** Curves that level off between the shortest distance and twice the longest, then a golden section around the best of them. */
 function bestRange(bins: readonly VariogramBin[], shape: VariogramModel['shape']): Fit {
-  const [low, high] = [bins[0]!.distanceM, 2 * bins.at(-1)!.distanceM];
+  const [low, high] = [bins[0]!.distanceM / levelAt[shape], (2 * bins.at(-1)!.distanceM) / levelAt[shape]];
   const rangeAt = (step: number) => low * (high / low) ** (step / rangeSteps);
   let best = 0;
   for (let step = 1; step <= rangeSteps; step++) if (fitAt(bins, shape, rangeAt(step)).misfit < fitAt(bins, shape, rangeAt(best)).misfit) best = step;

@@ -54,6 +54,18 @@ export type AsideReading = z.infer<typeof asideReading>;
 export const cleaningChange = z.object({ taken: z.array(z.enum(setAsideReasons)).max(setAsideReasons.length) });
 export type CleaningChange = z.infer<typeof cleaningChange>;
 
+/** Another layer of the block beside this one. */
+export const layerBeside = z.object({
+  id,
+  name: z.string(),
+  type: z.enum(layerTypeIds),
+  measuredOn: isoDate.nullable(),
+  correlation: z.number(),
+  /** How the other must be moved to lie best on this one; null when it lies well or is of another kind. */
+  shift: z.object({ eastM: z.number(), northM: z.number() }).nullable(),
+});
+export type LayerBeside = z.infer<typeof layerBeside>;
+
 export const layerOverride = z.object({ by: z.string(), reason: z.string(), at: z.string() });
 
 /** ready: no doubt; doubt: amber findings; blocked: red ones; overridden: red, and somebody answers for it; stale: made for an older outline. */

@@ -117,7 +117,7 @@ function bandCount({ file }: Asking): number {
 }
 
 function bandChoices({ file }: Asking): QuestionChoice[] {
-  return file.kind === 'raster' ? file.bands.map((band) => labelled(band.index, [String(band.index), band.description ?? band.colour].filter((word) => word !== null).join(' · '))) : [];
+  return file.kind === 'raster' ? file.bands.map((band) => labelled(band.index, band.description ?? (band.colour === null || band.colour === 'grey' ? '' : `colour:${band.colour}`))) : [];
 }
 
 function suggestUnit({ file, answers }: Asking): string | null {

@@ -1,6 +1,6 @@
 import { defineStore } from 'pinia';
 import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
-import type { AsideReading, BlockLayerView, CleaningChange, LayerChange, OverrideChange, ReliefView } from '../../shared/contracts/layers.ts';
+import type { AsideReading, BlockLayerView, CleaningChange, LayerBeside, LayerChange, OverrideChange, ReliefView } from '../../shared/contracts/layers.ts';
 import { http } from '../lib/http.ts';
 
 /** Layers on blocks and their cells. Cells are not kept here: a screen holds those it shows. */
@@ -12,11 +12,12 @@ export const useLayersStore = defineStore('layers', () => {
   const change = (estateId: string, layerId: string, changed: LayerChange) => http.patch(`${base(estateId)}/layers/${layerId}`, changed);
   const override = (estateId: string, layerId: string, made: OverrideChange) => http.post(`${base(estateId)}/layers/${layerId}/override`, made);
   const aside = async (estateId: string, layer: { id: string; blockId: string }) => (await http.get<{ items: AsideReading[] }>(`${base(estateId)}/layers/${layer.id}/aside`, { query: { block: layer.blockId } })).items;
+  const beside = async (estateId: string, layerId: string, blockId: string) => (await http.get<{ items: LayerBeside[] }>(`${base(estateId)}/layers/${layerId}/beside`, { query: { block: blockId } })).items;
   const clean = async (estateId: string, layerId: string, taken: CleaningChange['taken']) => (await http.put<{ jobId: string }>(`${base(estateId)}/layers/${layerId}/cleaning`, { taken })).jobId;
   const retire = (estateId: string, layerId: string) => http.delete(`${base(estateId)}/layers/${layerId}`);
   const original = (estateId: string, file: { fileId: string; fileName: string }) => http.download(`${base(estateId)}/files/${file.fileId}/download`, file.fileName);
 
   const relief = (estateId: string) => http.get<ReliefView | null>(`${base(estateId)}/relief`);
 
-  return { onBlock, cells, relief, aside, clean, change, override, retire, original };
+  return { onBlock, cells, relief, aside, beside, clean, change, override, retire, original };
 });

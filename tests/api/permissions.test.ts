@@ -63,6 +63,7 @@ const doors: Door[] = [
   door('post', `/layers/${nobody}/override`, 'layers.override'),
   door('delete', `/layers/${nobody}`, 'layers.import'),
   door('get', `/layers/${nobody}/aside?block=${nobody}`, 'estate.see', 'read'),
+  door('get', `/layers/${nobody}/beside?block=${nobody}`, 'estate.see', 'read'),
   door('put', `/layers/${nobody}/cleaning`, 'layers.import'),
   door('post', '/imports/pieces', 'layers.import'),
   door('post', '/imports/arrived', 'layers.import'),

@@ -1,7 +1,7 @@
-import AxeBuilder from '@axe-core/playwright';
-import type { Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { answer } from './support/answerImport.ts';
 import { startApplication, type Application } from './support/application.ts';
+import { expectAccessible } from './support/accessible.ts';
 import { elevationFile, outlineFile, soilZip, vigourFile } from './support/files.ts';
 
 let app: Application;
@@ -12,37 +12,6 @@ beforeAll(async () => {
   app = await startApplication();
 }, 600_000);
 afterAll(() => app?.close());
-
-/** No violation that axe calls serious or worse. */
-async function expectAccessible(page: Page): Promise<void> {
-  const { violations } = await new AxeBuilder({ page }).analyze();
-  expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id, nodes }) => `${id}: ${nodes.map(({ html }) => html.slice(0, 160)).join(' | ')}`)).toEqual([]);
-}
-
-/** Gives the answers that are still asked for, in steps, until the file is placed. */
-async function answer(page: Page, file: string, answers: Record<string, string>): Promise<void> {
-  const line = page.locator('li.import-line', { hasText: file }).first();
-  await line.waitFor();
-  for (let step = 0; step < 6; step++) {
-    await page.waitForFunction(() => document.querySelector('[aria-busy="true"]') === null);
-    if ((await line.getByRole('button', { name: 'Confirm', exact: true }).count()) === 0) {
-      if (await line.getByText('Ready', { exact: true }).count()) break;
-      await line.locator('h2 button').click();
-      if ((await line.getByRole('button', { name: 'Confirm', exact: true }).count()) === 0) break;
-    }
-    for (const [question, words] of Object.entries(answers)) {
-      const choice = line.getByRole('group', { name: question }).getByText(words, { exact: true });
-      if (await choice.count()) await choice.first().click();
-      const list = line.getByLabel(question);
-      if ((await list.count()) && (await list.first().evaluate((element) => element.tagName)) === 'SELECT') await list.first().selectOption({ label: words });
-      if ((await list.count()) && (await list.first().getAttribute('type')) === 'date') await list.first().fill(words);
-    }
-    const answered = page.waitForResponse((response) => response.request().method() !== 'GET' && response.url().includes('/imports/'));
-    await line.getByRole('button', { name: 'Confirm', exact: true }).click();
-    await answered;
-  }
-  await expect.poll(() => line.getByText('Ready', { exact: true }).count(), { timeout: 90_000 }).toBeGreaterThan(0);
-}
 
 describe('from a vigour image to a pick lot', () => {
   it('the agronomist makes a block from an outline', async () => {
@@ -67,9 +36,9 @@ describe('from a vigour image to a pick lot', () => {
     await page.goto(`${app.url}/e/${estateId}/imports`);
     await page.locator('input[type=file]').setInputFiles([vigourFile(), soilZip(), elevationFile()]);
     await page.locator('li.import-line', { hasText: 'gate-elevation.tif' }).waitFor({ timeout: 90_000 });
-    await answer(page, 'gate-vigour.tif', { 'What is it?': 'Vigour image', 'What shall be made of its bands?': 'NDVI (near infrared, red)', 'Which band is near infrared?': '2', 'Which band is red?': '1 · grey', 'When was it taken?': '2026-07-14', 'How were the alleys?': 'mown' });
+    await answer(page, 'gate-vigour.tif', { 'What is it?': 'Vigour image', 'What shall be made of its bands?': 'NDVI (near infrared, red)', 'Which band is near infrared?': 'Band 2', 'Which band is red?': 'Band 1', 'When was it taken?': '2026-07-14', 'How were the alleys?': 'mown' });
     await answer(page, 'gate-soil.zip', { 'What is it?': 'Soil', 'Which field holds the value?': 'AWC_MM', 'Are these values or classes?': 'values', 'When was it taken?': '2020-03-01' });
-    await answer(page, 'gate-elevation.tif', { 'What is it?': 'Elevation', 'What shall be made of its bands?': 'one band as it is', 'Which band?': '1 · grey', 'In which unit?': 'metres', 'When was it taken?': '2019-01-01' });
+    await answer(page, 'gate-elevation.tif', { 'What is it?': 'Elevation', 'What shall be made of its bands?': 'one band as it is', 'Which band?': 'Band 1', 'In which unit?': 'metres', 'When was it taken?': '2019-01-01' });
     await page.goto(`${app.url}${blockPath}`);
     await expect.poll(() => page.getByText('gate-vigour').count(), { timeout: 60_000 }).toBeGreaterThan(0);
     await context.close();

@@ -61,6 +61,7 @@ export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te, f
 
 /** The words of an answer: the file's own, or ours for the value. */
 export function choiceWords(question: Pick<ImportQuestion, 'code'>, choice: QuestionChoice, { t, te, format }: Words): string {
+  if (bandQuestions.has(question.code)) return bandWords(choice, { t, format });
   if (choice.label !== null && !['noData', 'swapAxes', 'placement'].includes(question.code)) return choice.label;
   const value = String(choice.value);
   const key = `imports.choice.${question.code}.${value}`;
@@ -77,3 +78,14 @@ export function answerWords(question: ImportQuestion, words: Words): string {
 }
 
 export const letterOf = (index: number): string => String.fromCharCode(65 + index);
+
+const bandQuestions = new Set(['band', 'nirBand', 'redBand', 'greenBand', 'redEdgeBand']);
+const colour = /^colour:(red|green|blue|palette|alpha)$/;
+
+/** A band by its number, with what the file calls it or which colour it is. */
+function bandWords({ value, label }: QuestionChoice, { t, format }: Pick<Words, 't' | 'format'>): string {
+  const n = typeof value === 'number' ? format.number(value) : String(value);
+  const named = colour.exec(label ?? '');
+  const name = named ? t(`imports.band.${named[1]!}`, {}) : label;
+  return name ? t('imports.band.named', { n, name }) : t('imports.band.plain', { n });
+}

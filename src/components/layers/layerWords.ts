@@ -1,4 +1,4 @@
-import type { LayerFinding, LayerSurvey, Readiness } from '../../../shared/contracts/layers.ts';
+import type { LayerBeside, LayerFinding, LayerSurvey, Readiness } from '../../../shared/contracts/layers.ts';
 import type { Format } from '../../lib/format.ts';
 import type { ChartAxis } from '../base/chartTypes.ts';
 import type { ChipKind } from '../base/StateChip.vue';
@@ -33,4 +33,23 @@ export function variogramAxes(bins: LayerSurvey['bins'], format: Format): { x: C
 function roundUp(value: number): number {
   const power = 10 ** Math.floor(Math.log10(value));
   return power * [1, 2, 4, 8, 10].find((times) => value <= times * power)!;
+}
+
+/** From this correlation on two layers tell one story twice (common practice). */
+const sameStory = 0.9;
+
+export function tellsTheSame({ correlation }: Pick<LayerBeside, 'correlation'>): boolean {
+  return Math.abs(correlation) > sameStory;
+}
+
+/** What another layer is beside this one: one story twice, off by so much, or of its own. */
+export function besideWords(other: LayerBeside, { t, format }: Words): string {
+  const alike = t(tellsTheSame(other) ? 'layers.beside.same' : 'layers.beside.own', { r: format.number(other.correlation, 2) });
+  if (other.shift === null) return alike;
+  const { eastM, northM } = other.shift;
+  const parts = [
+    ...(Math.abs(eastM) < 0.5 ? [] : [t(eastM > 0 ? 'layers.beside.east' : 'layers.beside.west', { far: format.withUnit('length', Math.abs(eastM), 1) })]),
+    ...(Math.abs(northM) < 0.5 ? [] : [t(northM > 0 ? 'layers.beside.north' : 'layers.beside.south', { far: format.withUnit('length', Math.abs(northM), 1) })]),
+  ];
+  return `${t('layers.beside.shifted', { far: format.list(parts) })} ${alike}`;
 }

@@ -15,7 +15,7 @@ export interface UploadFile {
 /** A new field of 150 m by 120 m east of the demo's blocks; its western half is weak, its eastern half strong. */
 const field = { west: 1180, south: 520, width: 150, height: 120 };
 
-function corner(x: number, y: number): [number, number] {
+export function corner(x: number, y: number): [number, number] {
   const { anchor } = frameOf();
   const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], estate.epsg);
   return [Number(lon.toFixed(8)), Number(lat.toFixed(8))];

@@ -6,6 +6,7 @@ import { seedEstate } from './seedEstate.ts';
 import { seedFruit } from './seedFruit.ts';
 import { seedField } from './seedField.ts';
 import { seedHarvest } from './seedHarvest.ts';
+import { seedLab } from './seedLab.ts';
 import { seedLayers } from './seedLayers.ts';
 import { seedLots } from './seedLots.ts';
 import { seedPlans } from './seedPlans.ts';
@@ -39,6 +40,7 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     step('plans');
     await seedPlans(made, laid, { days, now: options.now });
     await seedField(made, { days, now: options.now });
+    await seedLab(made, laid, { days, now: options.now });
     step('lots');
     await seedLots(made, days);
     step('harvest');

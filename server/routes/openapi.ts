@@ -3,6 +3,7 @@ import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMi
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, estateFacts, newEstate, seasonChange } from '../../shared/contracts/estate.ts';
 import { arrivedUploads, importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
+import { exclusionRequest, labBench, labFileAnswers, labFileStore, labFileView, labOutcome, labResultBatch, stateChange } from '../../shared/contracts/lab.ts';
 import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
 import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
@@ -121,6 +122,15 @@ const operations: Operation[] = [
   { method: 'post', path: '/api/estates/{estateId}/bags/missing', summary: 'Say that bags are not at the lab', body: bagsMissing },
   { method: 'post', path: '/api/estates/{estateId}/bags/swap', summary: 'Exchange the labels of two bags, with their results, for a reason', body: bagSwap },
   { method: 'post', path: '/api/estates/{estateId}/bags/{bagId}/settle', summary: 'Settle a label that is on two bags', body: clashChoice },
+  { method: 'get', path: '/api/estates/{estateId}/lab', summary: 'Bags, measures and figures on the bench, and how the figures stand to each other', answer: labBench },
+  { method: 'post', path: '/api/estates/{estateId}/lab/results', summary: 'Store typed figures as provisional results; may be repeated', body: labResultBatch, answer: z.object({ outcomes: z.array(labOutcome) }) },
+  { method: 'put', path: '/api/estates/{estateId}/lab/results/state', summary: 'Mark results as provisional, checked or final', body: stateChange },
+  { method: 'put', path: '/api/estates/{estateId}/lab/results/{resultId}/exclusion', summary: 'Leave a result out with a reason, propose it, or take it in again', body: exclusionRequest },
+  { method: 'post', path: '/api/estates/{estateId}/lab/files', summary: 'Send one file of a laboratory in the multipart field "files"; stores no result', answer: labFileView },
+  { method: 'get', path: '/api/estates/{estateId}/lab/files/{fileId}', summary: 'What was understood of a file, what is asked, and what would be stored', answer: labFileView },
+  { method: 'patch', path: '/api/estates/{estateId}/lab/files/{fileId}', summary: 'Answer questions about a file', body: labFileAnswers, answer: labFileView },
+  { method: 'post', path: '/api/estates/{estateId}/lab/files/{fileId}/store', summary: 'Store the results of a file when no question is open', body: labFileStore, answer: labFileView },
+  { method: 'get', path: '/api/estates/{estateId}/lab/files/{fileId}/original', summary: 'The file of a laboratory, byte for byte' },
   { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/labels', summary: 'Bag labels of a round as PDF: sheet (a4, letter) or single; the same labels again when asked again' },
   { method: 'post', path: '/api/estates/{estateId}/labels', summary: 'Blank bag labels as PDF, bound when a bag is closed' },
   { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },

@@ -34,10 +34,12 @@ export async function moveLabResults(trx: Transaction, estateId: string, moves: 
   return lists.reduce((sum, { ids }) => sum + ids.length, 0);
 }
 
-/** The season that a bag belongs to by its day. A label that nobody has sent yet goes to the newest season until then. */
-export async function seasonOfBag(trx: Transaction, estateId: string, bag: Bag): Promise<string> {
+/** Tells the season that a bag belongs to by its day. A label that nobody has sent yet goes to the newest season until then. */
+export async function seasonFinder(trx: Transaction, estateId: string): Promise<(bag: Bag) => string> {
   const seasons = await Season.query(trx).where({ estateId }).orderBy('startsOn', 'desc');
-  const season = seasonOn(seasons, (bag.closedAt ?? bag.createdAt).toISOString()) ?? seasons[0];
-  if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make one first; figures belong to a season.');
-  return season.id;
+  return (bag) => {
+    const season = seasonOn(seasons, (bag.closedAt ?? bag.createdAt).toISOString()) ?? seasons[0];
+    if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make one first; figures belong to a season.');
+    return season.id;
+  };
 }

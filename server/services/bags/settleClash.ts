@@ -6,7 +6,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from './bagContext.ts';
-import { seasonOfBag, takeLabelOver } from './labels.ts';
+import { seasonFinder, takeLabelOver } from './labels.ts';
 
 /**
  * Settles a label that is on two bags. `same`: one bag was closed by two people; the first closing takes in the vines and
@@ -34,7 +34,7 @@ export async function settleClash(access: Access, bagId: string, input: z.infer<
       const [holder] = await holdersOf(trx, estateId, [input.newCode]);
       if (holder?.closedAt) throw new Clash('labelTaken', `The label ${input.newCode} is on another bag already. Name one that is free.`);
       await closing.patch({ code: input.newCode, clashesWith: holder?.id ?? null });
-      if (holder) await takeLabelOver(trx, access, { bag: later, from: holder, seasonId: await seasonOfBag(trx, estateId, later) });
+      if (holder) await takeLabelOver(trx, access, { bag: later, from: holder, seasonId: (await seasonFinder(trx, estateId))(later) });
     }
     await writeAudit(trx, access, { action: 'bags.settle', subjectType: 'bags', subjectId: later.id, subjectName: later.code, before: { first: first.id, later: later.id }, after: { choice: input.choice, newCode: input.newCode }, reason: input.reason });
   });

@@ -4,7 +4,7 @@ import { Missing } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { holdersOf } from './bagContext.ts';
-import { moveLabResults, seasonOfBag } from './labels.ts';
+import { moveLabResults, seasonFinder } from './labels.ts';
 
 /**
  * Exchanges the labels of two bags in one step. What was seen at the row stays with the closing; label, receipt and the
@@ -16,11 +16,11 @@ export async function swapBags(access: Access, input: { codes: readonly [string,
     await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
     const holders = await holdersOf(trx, estateId, input.codes);
     const [one, other] = input.codes.map((code) => holders.find((bag) => bag.code === code) ?? missing(code)) as [Bag, Bag];
-    const seasons = [await seasonOfBag(trx, estateId, one), await seasonOfBag(trx, estateId, other)];
+    const seasonOf = await seasonFinder(trx, estateId);
     await exchange(trx, estateId, { one, other, now });
     const moved = await moveLabResults(trx, estateId, [
-      { from: one.id, to: { ...other, seasonId: seasons[1]! } },
-      { from: other.id, to: { ...one, seasonId: seasons[0]! } },
+      { from: one.id, to: { ...other, seasonId: seasonOf(other) } },
+      { from: other.id, to: { ...one, seasonId: seasonOf(one) } },
     ]);
     await writeAudit(trx, access, {
       action: 'bags.swap', subjectType: 'bags', subjectId: one.id, subjectName: `${one.code}, ${other.code}`, reason: input.reason,

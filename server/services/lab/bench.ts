@@ -1,4 +1,5 @@
 import type { LabBench, LabResult } from '../../../shared/contracts/lab.ts';
+import { measures as catalog } from '../../../shared/catalog/measures.ts';
 import type { Access } from '../../access/access.ts';
 import { LabFile } from '../../models/LabFile.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
@@ -12,6 +13,8 @@ export async function labBench(access: Access, now: Date): Promise<LabBench> {
   const { estateId } = access;
   const bags = await listBags(access, { now });
   const measures = await MeasureRecord.query().where({ estateId, measuredIn: 'lab' }).orderBy('code');
+  const place = (code: string) => (catalog.findIndex((measure) => measure.code === code) + 1 || catalog.length + 1);
+  measures.sort((a, b) => place(a.code) - place(b.code));
   const rows = await newestResults(estateId, bags.map(({ id }) => id));
   const people = await Person.query().findByIds([...new Set(rows.flatMap(({ personId, stateBy, exclusionProposal }) => [personId, stateBy, exclusionProposal?.by ?? null]).filter((id) => id !== null))]).select('id', 'name');
   const files = await LabFile.query().where({ estateId }).whereIn('id', rows.flatMap(({ labFileId }) => labFileId ?? [])).select('id', 'fileName');

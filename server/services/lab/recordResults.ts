@@ -8,11 +8,11 @@ import type { Bag } from '../../models/Bag.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from '../bags/bagContext.ts';
-import { seasonOfBag } from '../bags/labels.ts';
+import { seasonFinder } from '../bags/labels.ts';
 
 interface Context {
   bags: Map<string, Bag>;
-  seasons: Map<string, string>;
+  seasonOf: (bag: Bag) => string;
   measures: Map<string, MeasureRecord>;
   known: Map<string, Reading>;
 }
@@ -54,11 +54,10 @@ function idOf(raw: unknown): string {
 
 async function loadContext(trx: Transaction, { estateId }: Access, results: readonly NewLabResult[]): Promise<Context> {
   const bags = await holdersOf(trx, estateId, results.map(({ code }) => code));
-  const seasons = new Map<string, string>();
-  for (const bag of bags) seasons.set(bag.id, await seasonOfBag(trx, estateId, bag));
+  const seasonOf = await seasonFinder(trx, estateId);
   const measures = await MeasureRecord.query(trx).where({ estateId });
   const known = await Reading.query(trx).where({ estateId }).whereIn('id', results.flatMap(({ id, supersedes }) => (supersedes === null ? [id] : [id, supersedes])));
-  return { bags: new Map(bags.map((bag) => [bag.code, bag])), seasons, measures: new Map(measures.map((measure) => [measure.code, measure])), known: new Map(known.map((reading) => [reading.id, reading])) };
+  return { bags: new Map(bags.map((bag) => [bag.code, bag])), seasonOf, measures: new Map(measures.map((measure) => [measure.code, measure])), known: new Map(known.map((reading) => [reading.id, reading])) };
 }
 
 function refusalOf(result: NewLabResult, { bags, measures, known }: Context): string | null {
@@ -89,7 +88,7 @@ function rowOf(access: Access, result: NewLabResult, { context, now }: { context
   const { value, below } = valueOf(result)!;
   const own = convert(result, value);
   return {
-    id: result.id, estateId: access.estateId, seasonId: context.seasons.get(bag.id)!, blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
+    id: result.id, estateId: access.estateId, seasonId: context.seasonOf(bag), blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
     measureCode: measure.code, value: own, unit: measure.unit, valueTyped: result.typed, unitTyped: unitsOf(measure.code).find(({ id }) => id === result.unit)?.shown ?? measure.unit,
     samples: Math.max(1, bag.vines.length),
     // A result tells of the day on which the fruit was picked.

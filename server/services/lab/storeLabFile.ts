@@ -10,8 +10,11 @@ import { LabMapping } from '../../models/LabMapping.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from '../bags/bagContext.ts';
-import { seasonOfBag } from '../bags/labels.ts';
+import { seasonFinder } from '../bags/labels.ts';
 import { openFile, read, viewLabFile } from './labFiles.ts';
+
+/** PostgreSQL takes 65 535 values in one statement. */
+const rowsAtOnce = 500;
 
 /**
  * Stores the results of a file as provisional, all or none, and remembers how this laboratory's files are read. Refused
@@ -27,7 +30,8 @@ export async function storeLabFile(access: Access, fileId: string, input: z.infe
   await LabFile.transaction(async (trx) => {
     const locked = await LabFile.query(trx).findOne({ estateId, id: fileId }).forUpdate().throwIfNotFound();
     if (locked.state !== 'asks') throw new Clash('stored', `The results of ${record.fileName} are stored already.`);
-    await Reading.query(trx).insert(await rowsOf(access, understood.entries, { trx, record, input, now, replace: record.answers.again === 'replace' }));
+    const rows = await rowsOf(access, understood.entries, { trx, record, input, now, replace: record.answers.again === 'replace' });
+    for (let from = 0; from < rows.length; from += rowsAtOnce) await Reading.query(trx).insert(rows.slice(from, from + rowsAtOnce));
     const answers = Object.fromEntries(understood.questions.flatMap(({ key, answer }) => (answer !== null && isRemembered(key) ? [[key, answer]] : [])));
     await LabMapping.query(trx).insert({ estateId, labName: input.labName, mapping: { signature: understood.signature, answers }, updatedAt: now }).onConflict(['estateId', 'labName']).merge(['mapping', 'updatedAt']);
     await LabFile.query(trx).where({ estateId, id: fileId }).patch({ state: 'stored', labName: input.labName, storedBy: personId, storedAt: now, storedCount: understood.entries.length });
@@ -47,8 +51,7 @@ interface Storing {
 async function rowsOf(access: Access, entries: readonly LabEntry[], { trx, record, input, now, replace }: Storing): Promise<Partial<Reading>[]> {
   const { estateId, personId } = access;
   const bags = await holdersOf(trx, estateId, entries.map(({ code }) => code));
-  const seasons = new Map<string, string>();
-  for (const bag of bags) seasons.set(bag.id, await seasonOfBag(trx, estateId, bag));
+  const seasonOf = await seasonFinder(trx, estateId);
   const measures = await MeasureRecord.query(trx).where({ estateId });
   const before = replace ? await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bags.map(({ id }) => id)).whereNotExists(Reading.query(trx).alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId')) : [];
   const replaced = new Set<string>();
@@ -58,7 +61,7 @@ async function rowsOf(access: Access, entries: readonly LabEntry[], { trx, recor
     const former = before.find((reading) => reading.bagId === bag.id && reading.measureCode === entry.measure && !replaced.has(reading.id));
     if (former) replaced.add(former.id);
     return {
-      id: randomUUID(), estateId, seasonId: seasons.get(bag.id)!, blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
+      id: randomUUID(), estateId, seasonId: seasonOf(bag), blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
       measureCode: entry.measure, value: entry.value, unit: measures.find(({ code }) => code === entry.measure)!.unit, valueTyped: entry.typed, unitTyped: entry.unitTyped,
       samples: Math.max(1, bag.vines.length), takenAt: bag.closedAt ?? bag.receivedAt ?? now, receivedAt: now, personId, source: 'lab' as const, state: 'provisional' as const, stateBy: personId, stateAt: now,
       supersedes: former?.id ?? null, instrument: input.instrument, method: input.method, analysedOn: entry.analysedOn, labFileId: record.id,

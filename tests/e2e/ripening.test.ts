@@ -75,6 +75,8 @@ describe('from results to the season’s review', () => {
     const { page, context, estateId } = await app.signIn('winemaker');
     await page.goto(`${app.url}/e/${estateId}/lots`);
     await page.getByRole('button', { name: new RegExp(`^${lotName}`) }).first().click();
+    // A proposal gives no day where none has room; the winemaker sets one.
+    await page.getByLabel('Pick date', { exact: true }).fill(new Date(Date.now() + 25 * 86_400_000).toISOString().slice(0, 10));
     await page.getByLabel('Who picks').fill('north gang, 8 people');
     await page.getByRole('button', { name: 'Keep changes' }).click();
     await page.getByText(`“${lotName}” was kept.`).waitFor();

@@ -3,11 +3,13 @@
  * npm run bench -- --ripening [--count N] [--seed N]                  do forecasts hold as they say, how often is noise called a change
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
+ * npm run bench -- --import [--runs N] [--data FOLDER]                 seconds and memory of reading pictures, beside GDAL
  * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
  * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}'] …   speed, as JSON
  */
 
 import { parseArgs } from 'node:util';
+import { benchImport } from './benchImport.ts';
 import { benchPipeline } from './benchPipeline.ts';
 import { benchPlan } from './benchPlan.ts';
 import { benchSync } from './benchSync.ts';
@@ -23,6 +25,7 @@ const { values } = parseArgs({
     zones: { type: 'boolean', default: false },
     sync: { type: 'boolean', default: false },
     coverage: { type: 'boolean', default: false },
+    import: { type: 'boolean', default: false },
     plan: { type: 'boolean', default: false },
     count: { type: 'string' },
     seed: { type: 'string', default: '1000' },
@@ -41,6 +44,7 @@ else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), 
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);
 else if (values.ripening) for (const row of ripeningRows(Number(values.count ?? 2000))) print(row);
+else if (values.import) for (const row of benchImport({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null })) print(row);
 else if (values.plan) for (const row of benchPlan(Number(values.runs))) print(row);
 else print(await benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? [] }));
 

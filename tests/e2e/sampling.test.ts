@@ -84,7 +84,7 @@ describe('from a pilot to paper', () => {
     await page.getByRole('textbox', { name: 'Margin for Clusters per vine' }).first().fill('5');
     await page.keyboard.press('Tab');
     await page.getByText(/needs? more than 60 vines/).waitFor();
-    await page.getByText(/Margins \d+ % wider/).waitFor();
+    await page.getByText(/Margins \d+\s%\swider/).waitFor();
     const divide = page.getByRole('button', { name: 'Divide in a draft' }).first();
     await divide.click();
     await page.getByRole('dialog').getByRole('button', { name: 'Divide in a draft' }).click();

@@ -12,7 +12,8 @@ import { vineWords } from '../plans/viewPlan.ts';
  * Returns the ids of the fresh readings that meet another reading.
  */
 export async function findConflicts(trx: Transaction, access: Access, fresh: readonly NewReading[]): Promise<string[]> {
-  const onVines = fresh.filter((reading) => reading.rowId !== null && reading.supersedes === null && reading.source !== 'lab');
+  // A correction stands for what it corrects: it is looked at only when both come together.
+  const onVines = fresh.filter(({ rowId, supersedes, source }) => rowId !== null && source !== 'lab' && (supersedes === null || fresh.some(({ id }) => id === supersedes)));
   if (onVines.length === 0) return [];
   await findOldZones(trx, access, onVines);
   await findRenumbered(trx, access, onVines);
@@ -22,6 +23,9 @@ export async function findConflicts(trx: Transaction, access: Access, fresh: rea
 /** A reading counts while nothing corrects it and nobody left it out. */
 const stillCounts = 'b.excluded_reason is null and not exists (select 1 from readings c where c.estate_id = b.estate_id and c.supersedes = b.id)';
 
+/** What its own correction came with is no second reading. */
+const notCorrected = 'not exists (select 1 from readings d where d.estate_id = a.estate_id and d.supersedes = a.id)';
+
 async function findTwice(trx: Transaction, access: Access, fresh: readonly NewReading[]): Promise<string[]> {
   const ids = fresh.map(({ id }) => id);
   const { rows } = (await trx.raw(
@@ -29,13 +33,13 @@ async function findTwice(trx: Transaction, access: Access, fresh: readonly NewRe
      from readings a join readings b
        on b.estate_id = a.estate_id and b.row_id = a.row_id and b.ordinal = a.ordinal and b.measure_code = a.measure_code
       and b.round_id is not distinct from a.round_id and b.id <> a.id and (a.round_id is not null or b.taken_at::date = a.taken_at::date) and ${stillCounts}
-     where a.estate_id = :estateId and a.id = any(:ids) group by a.id
+     where a.estate_id = :estateId and a.id = any(:ids) and ${notCorrected} group by a.id
      union all
      select a.id, 'sameTarget', array_agg(b.id order by b.received_at, b.id)
      from readings a join readings b
        on b.estate_id = a.estate_id and b.round_id = a.round_id and b.target_id = a.target_id and b.measure_code = a.measure_code
       and (b.row_id, b.ordinal) is distinct from (a.row_id, a.ordinal) and b.id <> a.id and ${stillCounts}
-     where a.estate_id = :estateId and a.id = any(:ids) group by a.id`,
+     where a.estate_id = :estateId and a.id = any(:ids) and ${notCorrected} group by a.id`,
     { estateId: access.estateId, ids },
   )) as { rows: { fresh_id: string; kind: ConflictKind; others: string[] }[] };
   const byId = new Map(fresh.map((reading) => [reading.id, reading]));

@@ -1,5 +1,5 @@
 // npm test [-- filter …]: set-up, build, type check and all tests; lint too where CI asks for it (elsewhere: npm run lint). With a filter (file names as vitest takes them,
-// or vitest options) only the tests it names. The last line is `N passed, N failed`.
+// or vitest options) only the tests it names. npm run journeys: the long journeys in the browser. The last line is `N passed, N failed`.
 import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
@@ -41,10 +41,13 @@ async function runChecks() {
   return (await Promise.all(wanted.map(({ name, command }) => failureOf(name, () => runCommand(npmProgram(command[0]), command[1]))))).flat();
 }
 
+/** Without a filter: everything but the long journeys. */
+const everyDay = ['core', 'api', 'client', 'e2e'].flatMap((project) => ['--project', project]);
+
 /** Runs vitest in a process group of its own; resolves to whether it failed. */
 async function runVitest(filter, { env, reportFile, keep }) {
   say('Running the tests …');
-  const args = [npmProgram('vitest'), 'run', '--reporter=default', '--reporter=json', `--outputFile.json=${reportFile}`, ...filter];
+  const args = [npmProgram('vitest'), 'run', '--reporter=default', '--reporter=json', `--outputFile.json=${reportFile}`, ...(filter.length === 0 ? everyDay : filter)];
   const child = spawn(process.execPath, args, { cwd: root, env, detached: true, stdio: ['ignore', 'inherit', 'inherit'] });
   const ended = once(child, 'exit');
   const close = () => endGroup(child, ended);

@@ -15,10 +15,14 @@ export const useRipenessStore = defineStore('ripeness', () => {
     blocks.value = items.filter((block) => block.zoning !== null);
   }
 
-  /** `knownOn`: as it stood on that day; empty for now. */
+  let asked = 0;
+
+  /** `knownOn`: as it stood on that day; empty for now. The block asked for last is the one that is shown, whichever answer comes last. */
   async function load(estateId: string, blockId: string, knownOn = ''): Promise<void> {
+    const mine = ++asked;
     view.value = null;
-    view.value = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn } });
+    const answer = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn } });
+    if (mine === asked) view.value = answer;
   }
 
   return { blocks, view, loadBlocks, load };

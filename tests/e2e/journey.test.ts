@@ -165,7 +165,7 @@ describe('from a vigour image to a pick lot', () => {
     await page.getByText(/Your invitation to Marlhaven/).first().click();
     await page.getByText(/\/join\//).first().waitFor();
     await page.goto(`${app.url}/e/${estateId}/people`);
-    await page.getByText('Lucía Serra').click();
+    await page.getByText('Lucía Serra', { exact: true }).first().click();
     await page.getByLabel('lab', { exact: true }).check();
     await page.getByRole('button', { name: 'Keep these roles' }).click();
     await page.getByText('Roles of Lucía Serra are changed.').waitFor();

@@ -152,21 +152,21 @@ describe('a zoning', () => {
 
   it('leaves out a layer with red findings until somebody answers for it', async () => {
     const ask = () => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe());
-    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ findings: [{ code: 'stripes', severity: 'red', params: {} }] });
+    await BlockLayer.query().where({ layerId: plot.layerId, blockId: plot.blockId }).patch({ findings: [{ code: 'stripes', severity: 'red', params: {} }] });
     const refused = await ask();
     expect(refused.status).toBe(422);
     expect(refused.body).toMatchObject({ code: 'layerBlocked', detail: expect.stringContaining('Flight of June') });
     expect((await manager.post(`${base()}/layers/${plot.layerId}/override`, { blockId: plot.blockId, reason: 'Seen on foot' })).status).toBeLessThan(300);
     expect((await ask()).status).toBe(202);
-    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ findings: [], override: null });
+    await BlockLayer.query().where({ layerId: plot.layerId, blockId: plot.blockId }).patch({ findings: [], override: null });
   });
 
   it('refuses a layer that was placed on an older outline', async () => {
-    const { gridKey } = await BlockLayer.query().findOne({ layerId: plot.layerId }).throwIfNotFound();
-    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ gridKey: 'older' });
+    const { gridKey } = await BlockLayer.query().findOne({ layerId: plot.layerId, blockId: plot.blockId }).throwIfNotFound();
+    await BlockLayer.query().where({ layerId: plot.layerId, blockId: plot.blockId }).patch({ gridKey: 'older' });
     const refused = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe());
     expect([refused.status, refused.body.code]).toEqual([409, 'layerStale']);
-    await BlockLayer.query().where({ layerId: plot.layerId }).patch({ gridKey });
+    await BlockLayer.query().where({ layerId: plot.layerId, blockId: plot.blockId }).patch({ gridKey });
   });
 
   it('is not found from another estate', async () => {
@@ -217,7 +217,7 @@ describe('a zoning that does not come to its end', () => {
   });
 
   it('is marked as failed with the reason', async () => {
-    const here = await BlockLayer.query().findOne({ layerId: plot.layerId }).throwIfNotFound();
+    const here = await BlockLayer.query().findOne({ layerId: plot.layerId, blockId: plot.blockId }).throwIfNotFound();
     await BlockLayer.query().findById(here.id).patch({ cells: here.cells.subarray(0, 40) });
     const { zoningId, jobId } = await ask();
     const runner = await startRunner(app.config.databaseUrl);

@@ -33,7 +33,8 @@ export function createAppRouter(session: SessionStore): Router {
   const router = createRouter({ history: createWebHistory(), routes: records(), scrollBehavior: (to, from, saved) => saved ?? (to.name === from.name ? false : { top: 0 }) });
   router.beforeEach(async (to) => {
     const answer = guard(to, session, router);
-    if (answer === true && to.meta.frame === 'office') await loadOfficeTexts();
+    // The page behind a notice's code stands at the door and speaks of picking.
+    if (answer === true && (to.meta.frame === 'office' || to.name === 'noticeState')) await loadOfficeTexts();
     return answer;
   });
   announceArrivals(router);

@@ -23,15 +23,17 @@ async function held(page: Page): Promise<{ name: string; tag: string; isRinged: 
 
 /** Goes on with Tab until the thing named has the focus; what has it must always be seen. */
 async function tabTo(page: Page, name: RegExp): Promise<void> {
+  const passed = new Set<string>();
   for (let press = 0; press < mostTabs; press++) {
     const now = await held(page);
+    passed.add(now.name.slice(0, 40));
     if (name.test(now.name)) {
       if (now.tag !== 'INPUT') expect(now.isRinged, `ring round ${now.name}`).toBe(true);
       return;
     }
     await page.keyboard.press('Tab');
   }
-  throw new Error(`Tab never reaches ${String(name)}; it is at ${(await held(page)).name}`);
+  throw new Error(`Tab never reaches ${String(name)}; it passed ${[...passed].join(', ')}`);
 }
 
 async function press(page: Page, name: RegExp): Promise<void> {
@@ -72,7 +74,9 @@ describe('without a mouse', () => {
     await page.waitForURL(/\/zoning/);
     await heading(page, /\S/);
     await press(page, /^Run again$|^Zone this block$/);
+    const before = page.url();
     await press(page, /^Run$/);
+    await page.waitForURL((url) => url.href !== before);
     await page.getByRole('button', { name: /Keep .* as a draft/ }).waitFor({ timeout: 120_000 });
     await press(page, /^Keep .* as a draft$/);
     await page.waitForURL(/\/zonings\/[0-9a-f-]{36}\/edit$/);

@@ -1,3 +1,4 @@
+import type { TransactionOrKnex } from 'objection';
 import type { ResetAnswer } from '../../../shared/contracts/account.ts';
 import { hashPassword, hashToken, newToken } from '../../access/passwords.ts';
 import { Clash, Missing } from '../../errors.ts';
@@ -21,10 +22,30 @@ export async function askForReset(email: string, options: { publicUrl: string; a
   await PasswordReset.transaction(async (trx) => {
     await Person.query(trx).findById(person.id).forUpdate();
     if ((await PasswordReset.query(trx).where({ personId: person.id }).where('createdAt', '>', hourAgo).resultSize()) >= linksAnHour) return;
-    const { token, tokenHash } = newToken();
-    await PasswordReset.query(trx).insert({ personId: person.id, tokenHash, expiresAt: new Date(options.now.getTime() + linkMinutes * 60_000), createdAt: options.now });
+    const token = await writeLink(trx, person.id, options.now);
     await mailAboutAccount(trx, person, { kind: 'reset', facts: { link: `${options.publicUrl}/reset/${token}` } });
     await auditAccount(trx, person, 'account.askReset');
+  });
+}
+
+/** A link's secret, of which only the hash is stored. */
+async function writeLink(trx: TransactionOrKnex, personId: string, now: Date): Promise<string> {
+  const { token, tokenHash } = newToken();
+  await PasswordReset.query(trx).insert({ personId, tokenHash, expiresAt: new Date(now.getTime() + linkMinutes * 60_000), createdAt: now });
+  return token;
+}
+
+/**
+ * For whoever runs the server and has to let somebody in: the secret of a link that sets a password. It goes to nobody
+ * but the caller. The history of the person's estates notes it. Throws when the address is unknown or of the demo.
+ */
+export async function linkFor(email: string, now: Date): Promise<string> {
+  const person = await Person.query().findOne({ email });
+  if (!person) throw new Missing(`Nobody is known by ${email}.`);
+  if (person.isDemo) throw new Clash('demoPerson', 'People of the demo estate keep their password.');
+  return PasswordReset.transaction(async (trx) => {
+    await auditAccount(trx, person, 'account.askReset');
+    return writeLink(trx, person.id, now);
   });
 }
 

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { emptyDraft, paperBatch, retyped, vineOfLine, type PaperDraft } from '../../src/components/field/paperDraft.ts';
+import { emptyDraft, paperBatch, retyped, vineOfLine, withOutcomes, type PaperDraft } from '../../src/components/field/paperDraft.ts';
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
 
 const round = {
@@ -30,6 +30,15 @@ describe('a sheet that is typed', () => {
     expect(retyped(saved, '21')).toEqual(saved);
     expect(retyped(saved, '22')).toMatchObject({ text: '22', supersedes: cell.id, outcome: null });
     expect(retyped({ ...saved, outcome: { id: cell.id, state: 'refused', reason: 'x' } }, '22').id).toBe(cell.id);
+  });
+
+  it('takes what was typed while the answer was on its way for a correction of what was sent', () => {
+    const draft = typed(typed(emptyDraft(round), 't1', '21'), 't2', '30');
+    const { readings } = paperBatch(round, draft, sheet);
+    const outcomes = readings.map(({ id }) => ({ id, state: 'received' as const, reason: null }));
+    const after = withOutcomes(typed(draft, 't1', '12'), readings, outcomes);
+    expect(after.t2!.cells.clusterCount).toMatchObject({ text: '30', outcome: { state: 'received' } });
+    expect(paperBatch(round, after, sheet).readings).toMatchObject([{ targetId: 't1', value: 12, supersedes: readings[0]!.id }]);
   });
 
   it('reads the reserve where something else stands, and none where both are gone', () => {

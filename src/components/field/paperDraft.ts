@@ -36,6 +36,19 @@ export function retyped(cell: PaperCell, text: string): PaperCell {
   return isSaved && text !== cell.text ? { id: crypto.randomUUID(), text, outcome: null, supersedes: cell.id } : { ...cell, text };
 }
 
+/**
+ * The draft with what the server answered. A box that was typed anew while the answer was on its way is a correction of
+ * what was sent, and waits to be saved itself.
+ */
+export function withOutcomes(draft: PaperDraft, sent: readonly Pick<NewReading, 'id' | 'valueTyped'>[], outcomes: readonly ReadingOutcome[]): PaperDraft {
+  const textSent = new Map(sent.map(({ id, valueTyped }) => [id, valueTyped]));
+  const answered = (cell: PaperCell): PaperCell => {
+    const outcome = outcomes.find(({ id }) => id === cell.id);
+    return outcome ? retyped({ ...cell, text: textSent.get(cell.id) ?? cell.text, outcome }, cell.text) : cell;
+  };
+  return Object.fromEntries(Object.entries(draft).map(([target, line]) => [target, { ...line, cells: Object.fromEntries(Object.entries(line.cells).map(([code, cell]) => [code, answered(cell)])) }]));
+}
+
 /** The vine that a line's values were read on: the target, its reserve, or none. */
 export function vineOfLine(stop: WalkStop, { states }: PaperLine): { rowId: string; rowLabel: string; ordinal: number; vineNumber: number; isReserve: boolean } | null {
   if (states[0] === '') return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false };

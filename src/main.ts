@@ -33,8 +33,7 @@ async function start(): Promise<void> {
   const texts = showLanguage(readStored<Session>('session')?.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
   if (location.pathname.endsWith('/field')) void views.fieldWork?.().catch(() => undefined);
 
-  // Without an answer the door still opens and says so; crews go on with what their phone holds.
-  await session.load().catch(() => session.recall());
+  const { answered } = await begin(session);
   if (session.person) useTheme().choose(session.person.theme);
   await texts;
   if (session.person) await showLanguage(session.person.language);
@@ -48,6 +47,11 @@ async function start(): Promise<void> {
   app.use(router);
   await router.isReady().catch(() => undefined);
   app.mount('#app');
+  void answered.then(() => {
+    const place = router.currentRoute.value;
+    // Signed out meanwhile, from another device or by time: the walk stays on the phone, and the door opens.
+    if (session.person === null && place.meta.frame === 'field') void router.push({ name: 'signIn', query: { to: place.fullPath } });
+  });
 
   watchForUpdate((load) => {
     // A new program takes over only an empty outbox: what waits was written by the old one, and goes with it.
@@ -58,6 +62,20 @@ async function start(): Promise<void> {
     };
     useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: () => void loadWhenSent() } });
   });
+}
+
+/**
+ * Asks who is signed in. Without an answer the door still opens and says so. In the field nobody waits for the answer:
+ * with one bar of signal it may take minutes, and the day's work is on the phone. Resolves once there is somebody to
+ * begin with; `answered` when the server has spoken.
+ */
+async function begin(session: ReturnType<typeof useSessionStore>): Promise<{ answered: Promise<void> }> {
+  const answered = session.load().catch(() => session.recall());
+  const kept = readStored<Session>('session');
+  const isField = /^\/e\/[^/]+\/field(\/|$)/.test(location.pathname) || (location.pathname === '/' && kept?.estates.every(({ roles }) => roles.every((role) => role === 'crew')) === true);
+  if (isField && kept) session.recall();
+  else await answered;
+  return { answered };
 }
 
 void start();

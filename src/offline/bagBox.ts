@@ -2,6 +2,7 @@ import type { BagBatchAnswer } from '../../shared/contracts/bags.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { fieldDatabase, type KeptBag } from './fieldDatabase.ts';
+import { oneAtATime } from './oneAtATime.ts';
 
 /**
  * Keeps a closed bag. Answers the bag that carries the label already, when this phone knows one: a label is bound once.
@@ -23,13 +24,8 @@ export async function waitingBags(personId: string): Promise<KeptBag[]> {
   return (await (await fieldDatabase()).getAllFromIndex('bags', 'received', 0)).filter((bag) => bag.personId === personId && bag.outcome?.state !== 'refused');
 }
 
-let sending: Promise<void> | null = null;
-
 /** Sends closed bags; repeated as often as needed, stored once. */
-export function sendBags(personId: string, now: () => Date): Promise<void> {
-  sending ??= sendAll(personId, now).finally(() => (sending = null));
-  return sending;
-}
+export const sendBags = oneAtATime(sendAll);
 
 async function sendAll(personId: string, now: () => Date): Promise<void> {
   const waiting = await waitingBags(personId);

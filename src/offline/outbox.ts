@@ -2,6 +2,7 @@ import type { BatchAnswer } from '../../shared/contracts/readings.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { fieldDatabase, type Entry } from './fieldDatabase.ts';
+import { oneAtATime } from './oneAtATime.ts';
 
 /** Readings a batch; small enough to pass a weak signal whole. */
 const batchSize = 100;
@@ -51,8 +52,6 @@ export async function countWaiting(personId: string): Promise<number> {
   return (await (await fieldDatabase()).getAllFromIndex('entries', 'received', 0)).filter((entry) => entry.kind !== 'pick' && entry.personId === personId && entry.outcome?.state !== 'refused').length;
 }
 
-let sending: Promise<SendResult> | null = null;
-
 export interface SendResult {
   readonly sent: number;
   readonly reached: boolean;
@@ -64,10 +63,7 @@ export interface SendResult {
  * Sends what waits, batch by batch. May be called at any time and any number of times: one run at a time, ids were made
  * on the phone, and the server stores an id once. An entry counts as received only when the server answered for it by name.
  */
-export function sendWaiting(personId: string, now: () => Date): Promise<SendResult> {
-  sending ??= sendAll(personId, now).finally(() => (sending = null));
-  return sending;
-}
+export const sendWaiting = oneAtATime(sendAll);
 
 async function sendAll(personId: string, now: () => Date): Promise<SendResult> {
   // Where the phone itself says that there is no network nothing is tried, so that what was typed can still be taken back.

@@ -1,6 +1,7 @@
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { fieldDatabase, type KeptPhoto } from './fieldDatabase.ts';
+import { oneAtATime } from './oneAtATime.ts';
 
 /** Keeps a photo on the phone; it is sent when there is signal. */
 export async function addPhoto(photo: KeptPhoto): Promise<void> {
@@ -17,13 +18,8 @@ async function waiting(personId: string): Promise<KeptPhoto[]> {
   return (await (await fieldDatabase()).getAllFromIndex('photos', 'received', 0)).filter((photo) => photo.personId === personId);
 }
 
-let sending: Promise<void> | null = null;
-
 /** Sends what waits, one by one; a photo leaves the phone only after the server answered for it. */
-export function sendPhotos(personId: string): Promise<void> {
-  sending ??= sendAll(personId).finally(() => (sending = null));
-  return sending;
-}
+export const sendPhotos = oneAtATime(sendAll);
 
 async function sendAll(personId: string): Promise<void> {
   for (const photo of await waiting(personId)) {

@@ -46,6 +46,8 @@ export const useFieldStore = defineStore('field', () => {
   const isEmptied = ref(false);
   const isReady = ref<boolean | null>(null);
   let owner: Owner = { estateId: '', personId: '' };
+  /** Typed and on its way into the phone's store: shown at the tap, so that the next tap is about the next vine. */
+  const writing = new Map<string, Entry>();
   let checkedIn = { state: '', at: 0 };
 
   async function begin(estateId: string, personId: string): Promise<void> {
@@ -57,13 +59,23 @@ export const useFieldStore = defineStore('field', () => {
     waiting.value = await totalWaiting(owner.personId);
     others.value = await waitingOfOthers(owner.personId);
     all.value = await allEntries(owner.personId);
-    if (round.value) entries.value = await entriesOfRound(owner.personId, round.value.id);
+    if (round.value) await show(round.value.id);
   }
 
-  /** What the phone holds first; then, when the server answers, the newest, with each round of one's own put on the phone. */
-  async function loadWork(): Promise<void> {
+  async function show(roundId: string): Promise<void> {
+    const stored = await entriesOfRound(owner.personId, roundId);
+    const isStored = new Set(stored.map(({ id }) => id));
+    entries.value = [...stored, ...[...writing.values()].filter((entry) => entry.roundId === roundId && !isStored.has(entry.id))];
+  }
+
+  /** What the phone holds of the day's work: there at once, whatever the network does. */
+  async function recallWork(): Promise<void> {
     const kept = await keptList(owner);
     if (kept) [rounds.value, listedAt.value] = [kept.items, kept.at];
+  }
+
+  /** When the server answers, the newest, with each round of one's own put on the phone. */
+  async function loadWork(): Promise<void> {
     const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`));
     if (!fresh) return;
     const mine = fresh.items.filter(({ isMine, state }) => isMine && (state === 'sent' || state === 'open'));
@@ -85,7 +97,7 @@ export const useFieldStore = defineStore('field', () => {
     if (!found) return false;
     if (!kept) await keepRound(owner, found, new Date());
     round.value = found;
-    entries.value = await entriesOfRound(owner.personId, roundId);
+    await show(roundId);
     return true;
   }
 
@@ -104,33 +116,41 @@ export const useFieldStore = defineStore('field', () => {
     return { id: crypto.randomUUID(), ...owner, roundId: round.value!.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
   }
 
-  /** Writes a value to the phone; it is safe when this resolves. Sending goes on by itself. `readBy`: a colleague who walks with this phone. */
+  /** Shows an entry at once and writes it to the phone; it is safe when this resolves. An entry that cannot be written is shown no longer. */
+  async function keep(entry: Entry): Promise<void> {
+    writing.set(entry.id, entry);
+    entries.value = [...entries.value, entry];
+    try {
+      await addEntries([entry]);
+    } finally {
+      writing.delete(entry.id);
+      await count();
+    }
+    if (entry.kind !== 'pick') void send();
+  }
+
+  /** Keeps a value on the phone. Sending goes on by itself. `readBy`: a colleague who walks with this phone. */
   async function record(stop: WalkStop, vine: VineAtStop, typed: { measure: FieldMeasure; text: string; value: number; isOdd: boolean; supersedes: string | null; readBy: string | null }): Promise<void> {
     const head = entryOf(stop, vine);
     const flags = [...(typed.isOdd ? (['odd'] as const) : []), ...(vine.isReserve ? (['reserve'] as const) : [])];
-    await addEntries([{
+    await keep({
       ...head, kind: 'reading', finding: null,
       reading: {
         id: head.id, blockId: round.value!.blockId, roundId: round.value!.id, targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal, measureCode: typed.measure.code,
         value: typed.value, unit: typed.measure.unit, valueTyped: typed.text, takenAt: head.at, deviceId: deviceId(), supersedes: typed.supersedes, flags, readBy: typed.readBy, seenAs: { row: vine.rowLabel, vine: vine.vineNumber },
       },
-    }]);
-    await count();
-    void send();
+    });
   }
 
   /** Notes what stands in the target's place: a proposal for the census, and the reserve takes over. */
   async function find(stop: WalkStop, vine: VineAtStop, { state, readBy }: { state: VineState; readBy: string | null }): Promise<void> {
     const head = entryOf(stop, vine);
-    await addEntries([{ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at, deviceId: deviceId(), readBy } }]);
-    await count();
-    void send();
+    await keep({ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at, deviceId: deviceId(), readBy } });
   }
 
   /** Notes that fruit of the vine went into the open bag. */
   async function pick(stop: WalkStop, vine: VineAtStop): Promise<void> {
-    await addEntries([{ ...entryOf(stop, vine), kind: 'pick', reading: null, finding: null, pick: { targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal } }]);
-    await count();
+    await keep({ ...entryOf(stop, vine), kind: 'pick', reading: null, finding: null, pick: { targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal } });
   }
 
   /** Takes the last entry back if it is only on this phone; a finding that has left it is set aside. */
@@ -182,7 +202,7 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isSending, clockOffMin, isEmptied, begin, count, loadWork, openRound, refreshRound, setState, record, find, pick, undo, photograph, send, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, isSending, clockOffMin, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, setState, record, find, pick, undo, photograph, send, noteReady };
 });
 
 /** Null when there is no signal or the server declines: how a phone stands is never in the way of work. */

@@ -3,7 +3,7 @@ import { shallowRef } from 'vue';
 import type { BagLine, NewBag } from '../../shared/contracts/bags.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
-import { addBag, bagsOfRound, sendBags } from '../offline/bagBox.ts';
+import { addBag, bagsOfRound } from '../offline/bagBox.ts';
 import { deviceId } from '../offline/deviceId.ts';
 import type { KeptBag } from '../offline/fieldDatabase.ts';
 
@@ -20,8 +20,12 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
   /** Labels of the round that other phones had bound when the server was last asked. */
   const others = shallowRef<readonly BagLine[]>([]);
 
-  async function load(estateId: string, roundId: string): Promise<void> {
+  async function look(roundId: string): Promise<void> {
     bags.value = await bagsOfRound(roundId);
+  }
+
+  async function load(estateId: string, roundId: string): Promise<void> {
+    await look(roundId);
     try {
       others.value = (await http.get<{ items: BagLine[] }>(`/api/estates/${estateId}/bags`, { query: { round: roundId } })).items;
     } catch (error) {
@@ -35,7 +39,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
     return other ? { row: other.rowLabel, person: other.holder, at: other.closedAt } : null;
   }
 
-  /** Keeps a closed bag on the phone and sends it when it can. Answers where the label is bound already, if it is. */
+  /** Keeps a closed bag on the phone, to be sent with the rest. Answers where the label is bound already, if it is. */
   async function close(owner: { estateId: string; personId: string; roundId: string }, closed: Pick<NewBag, 'code' | 'blockId' | 'vines' | 'berries' | 'sunSide' | 'shadeSide' | 'wet' | 'rotPercent' | 'note'> & { zone: number }): Promise<LabelUse | null> {
     const known = usedBy(closed.code);
     if (known && !bags.value.some(({ code }) => code === closed.code)) return known;
@@ -43,12 +47,9 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
     const [id, at] = [crypto.randomUUID(), new Date().toISOString()];
     const bag: NewBag = { ...facts, id, state: 'closed', roundId: owner.roundId, zoneId: null, closedAt: at, deviceTime: null, deviceId: deviceId() };
     const holder = await addBag({ ...owner, id, zone, code: closed.code, bag, at, received: 0, outcome: null });
-    bags.value = await bagsOfRound(owner.roundId);
-    if (holder) return { row: null, person: null, at: holder.at };
-    await sendBags(owner.personId, () => new Date());
-    bags.value = await bagsOfRound(owner.roundId);
-    return null;
+    await look(owner.roundId);
+    return holder ? { row: null, person: null, at: holder.at } : null;
   }
 
-  return { bags, load, close };
+  return { bags, load, look, close };
 });

@@ -5,7 +5,7 @@ import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { PlanList } from '../../shared/contracts/plans.ts';
 import type { ReadingView } from '../../shared/contracts/readings.ts';
 import { startApplication, type Application } from './support/application.ts';
-import { heldBy, keyIn, openOffice, openPhone, recordMany, startWalk, type Office } from './support/fieldPhones.ts';
+import { heldBy, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
 
 const names = ['Ana Reed', 'Ben Moor', 'Cleo Lane'];
 const pin = '4711';
@@ -81,9 +81,50 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await page.getByRole('button', { name: 'Erase' }).tap();
     await page.getByRole('button', { name: 'Erase' }).tap();
     await keyIn(page, 31);
-    expect((await heldBy(page)).readings.map(({ value }) => value)).toEqual([24, 0.62, 999, 0.7, 31]);
+    await expect.poll(async () => (await heldBy(page)).readings.map(({ value }) => value)).toEqual([24, 0.62, 999, 0.7, 31]);
     const keys = await page.locator('.pad button').evaluateAll((buttons) => buttons.map((button) => Math.min(button.getBoundingClientRect().width, button.getBoundingClientRect().height)));
     expect(Math.min(...keys)).toBeGreaterThanOrEqual(64);
+  });
+
+  it('taps that come faster than the phone writes belong to their own vine, and what cannot be written is said', async () => {
+    const [{ page }] = phones as [(typeof phones)[number]];
+    const first = await heldBy(page);
+    const asked = first.round.stops.flatMap((stop) => first.round.measures.filter(({ code }) => stop.measures.includes(code)).map(({ code }) => `${stop.targetId} ${code}`)).slice(5, 8);
+    const typed = asked.map((place, at) => `${place} ${place.endsWith('clusterCount') ? 20 + at : 0.5 + at / 10}`);
+    await tapFast(page, typed.map((line) => line.split(' ')[2]!));
+    await expect.poll(async () => (await heldBy(page)).readings.slice(5).map(({ targetId, measureCode, value }) => `${targetId} ${measureCode} ${value}`)).toEqual(typed);
+    expect((await storedBy(page)).filter(({ kind }) => kind === 'reading')).toHaveLength(8);
+    // The phone has no room left.
+    await page.evaluate(() => {
+      const add = IDBObjectStore.prototype.add;
+      IDBObjectStore.prototype.add = () => {
+        IDBObjectStore.prototype.add = add;
+        throw new DOMException('No room.', 'QuotaExceededError');
+      };
+    });
+    const before = await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent();
+    await keyIn(page, 1);
+    await page.getByText('This phone could not keep it.').waitFor();
+    expect(await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent()).toBe(before);
+    expect((await heldBy(page)).readings).toHaveLength(8);
+    await page.getByRole('button', { name: 'Save and next' }).tap();
+    await page.getByText('This phone could not keep it.').waitFor({ state: 'detached' });
+    expect((await storedBy(page)).filter(({ kind }) => kind === 'reading')).toHaveLength(9);
+  });
+
+  it('with a signal that never answers the phone opens at once, and the walk goes on', async () => {
+    const [{ page, context }] = phones as [(typeof phones)[number]];
+    await context.route('**/api/**', () => undefined);
+    await context.setOffline(false);
+    const from = Date.now();
+    await page.reload();
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    expect(Date.now() - from).toBeLessThan(5000);
+    await page.goto(page.url().replace(/\/rounds\/.*/, ''));
+    await page.getByRole('button', { name: 'Go on', exact: true }).tap();
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    await context.setOffline(true);
+    await context.unroute('**/api/**');
   });
 
   it('the browser is started again in the middle, without signal, and nothing is gone', async () => {
@@ -186,6 +227,17 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await page.goto(`${app.url}/e/${office.estateId}/rounds/${roundId}/paper`);
     await page.getByText(names[2]!, { exact: true }).click();
     await page.getByText(/received already/).first().waitFor();
+    // Nobody's boxes stand under another's name while a sheet is fetched.
+    await page.route(`**/rounds/${roundId}?person=*`, async (route) => {
+      await new Promise((later) => setTimeout(later, 400));
+      await route.continue();
+    });
+    await page.getByText(names[0]!, { exact: true }).click();
+    expect(await page.locator('input[data-place]').count()).toBe(0);
+    await page.getByText(names[2]!, { exact: true }).click();
+    await page.locator('input[data-place]').first().waitFor();
+    await page.unroute(`**/rounds/${roundId}?person=*`);
+    expect(await page.getByText(/received already/).count()).toBe(20);
     const value = (targetId: string, measureCode: string) => cleo.readings.find((reading) => reading.targetId === targetId && reading.measureCode === measureCode)!.value;
     for (const measure of ['clusterCount', 'pruningWeight']) {
       const asked = cleo.round.stops.filter((stop) => stop.measures.includes(measure));
@@ -200,6 +252,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     // Opened anew, the sheet knows what was saved, and offers nothing to save twice.
     await page.reload();
     await page.getByText(names[2]!, { exact: true }).click();
+    await page.locator(`input[aria-label$="row ${cleo.round.stops[0]!.rowLabel}, vine ${cleo.round.stops[0]!.vineNumber}"]`).first().waitFor();
     await page.getByText('Nothing new to save').waitFor();
     const first = cleo.round.stops.find(({ measures }) => measures.includes('clusterCount'))!;
     expect(await page.locator('input[data-place$=" clusterCount"]').first().inputValue()).toBe(String(value(first.targetId, 'clusterCount')));
@@ -218,8 +271,8 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(bags).toMatchObject([{ code: 'BBBBCV', place: 'expected', holder: names[0] }]);
     const items = (await office.get<ConflictList>('/conflicts')).items.filter(({ readings: both }) => both.some(({ who }) => names.includes(who ?? '')));
     expect(items).toHaveLength(7);
-    // Ana read the reserve of her third vine, which she found missing; Ben read what he found there.
-    expect(items.map(({ kind }) => kind).sort()).toEqual(['sameTarget', ...Array.from({ length: 6 }, () => 'sameVine')]);
+    // Ana read the reserve of her third vine, which she found missing, for both measures; Ben read what he found there.
+    expect(items.map(({ kind }) => kind).sort()).toEqual([...Array.from({ length: 2 }, () => 'sameTarget'), ...Array.from({ length: 5 }, () => 'sameVine')]);
     expect(items.every(({ readings: both }) => both.length === 2)).toBe(true);
   });
 

@@ -53,6 +53,36 @@ export async function keyIn(page: Page, value: number | string): Promise<void> {
   await page.getByRole('button', { name: 'Save and next' }).tap();
 }
 
+/** Values typed and saved one after another with no pause between the taps, as no thumb could. */
+export function tapFast(page: Page, values: readonly string[]): Promise<void> {
+  return page.evaluate(async (values) => {
+    const tap = async (name: string): Promise<void> => {
+      const button = [...document.querySelectorAll<HTMLButtonElement>('button')].find((one) => (one.ariaLabel ?? one.textContent).trim() === name);
+      button!.click();
+      await new Promise((next) => setTimeout(next, 0));
+    };
+    for (const value of values) {
+      for (const key of value) await tap(key === '.' ? 'Decimal point' : key);
+      await tap('Save and next');
+    }
+  }, values);
+}
+
+/** What lies in the phone's own store, read without the program. */
+export function storedBy(page: Page): Promise<{ id: string; kind: string; received: number }[]> {
+  return page.evaluate(() => new Promise((resolve, reject) => {
+    const opening = indexedDB.open('patchrow-field');
+    opening.onerror = () => reject(new Error('no store'));
+    opening.onsuccess = () => {
+      const reading = opening.result.transaction('entries').objectStore('entries').getAll();
+      reading.onsuccess = () => {
+        opening.result.close();
+        resolve(reading.result as { id: string; kind: string; received: number }[]);
+      };
+    };
+  }));
+}
+
 interface FieldStore {
   round: FieldRound;
   waiting: number;

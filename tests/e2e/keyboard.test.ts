@@ -154,4 +154,52 @@ describe('without a mouse', () => {
     await heading(page, /Typed Piece/);
     await context.close();
   });
+
+  it('the crew records a vine, the winemaker puts a zone into a new lot, the owner invites and ends an access', async () => {
+    const crew = await app.signIn('crew');
+    await crew.page.goto(`${app.url}/e/${crew.estateId}/field`);
+    await crew.page.getByRole('button', { name: 'Start the walk' }).first().waitFor();
+    await press(crew.page, /^Start the walk$/);
+    await press(crew.page, /^I have read this$/);
+    const place = crew.page.getByText(/^Row \d+, vine \d+/).first();
+    const before = await place.innerText();
+    await press(crew.page, /^2$/);
+    await press(crew.page, /^1$/);
+    await press(crew.page, /^Save and next$/);
+    await expect.poll(() => place.innerText()).not.toBe(before);
+    await crew.context.close();
+
+    const maker = await app.signIn('winemaker');
+    await maker.page.goto(`${app.url}/e/${maker.estateId}/lots`);
+    await maker.page.getByRole('button', { name: 'New lot' }).waitFor();
+    await press(maker.page, /^New lot$/);
+    await tabTo(maker.page, /^Name$/);
+    await maker.page.keyboard.type('By keys');
+    await press(maker.page, /^Make the lot$/);
+    await maker.page.getByRole('dialog').waitFor({ state: 'detached' });
+    // One stop in the table; the arrows go from line to line.
+    await tabTo(maker.page, /^Heron Bank/);
+    await maker.page.keyboard.press('ArrowDown');
+    expect((await held(maker.page)).name).toMatch(/^Heron Bank/);
+    await maker.page.keyboard.press('Enter');
+    await press(maker.page, /^By keys$/);
+    const lots = async () => ((await (await maker.page.request.get(`${app.url}/api/estates/${maker.estateId}/lots`)).json()) as { lots: { name: string; lines: { blockName: string }[] }[] }).lots;
+    await expect.poll(async () => (await lots()).find(({ name }) => name === 'By keys')?.lines.map(({ blockName }) => blockName), { timeout: 20_000 }).toEqual(['Heron Bank']);
+    await maker.context.close();
+
+    const owner = await app.signIn('owner');
+    await owner.page.goto(`${app.url}/e/${owner.estateId}/people`);
+    await owner.page.getByRole('button', { name: 'Invite a person' }).waitFor();
+    await press(owner.page, /^Invite a person$/);
+    await tabTo(owner.page, /^E-mail/);
+    await owner.page.keyboard.type('keys@example.org');
+    await press(owner.page, /^Send invitation$/);
+    await owner.page.getByText('keys@example.org').first().waitFor();
+    await press(owner.page, /^Lucía Serra/);
+    await press(owner.page, /^End access$/);
+    await expect.poll(async () => (await held(owner.page)).inDialog).toBe(true);
+    await press(owner.page, /^End access$/);
+    await owner.page.getByText('Lucía Serra has no access any more.').waitFor();
+    await owner.context.close();
+  });
 });

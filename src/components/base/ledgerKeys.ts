@@ -1,8 +1,8 @@
 /** What a key asks of a ledger; null when it asks nothing. Keys of text fields are never taken. */
-export type LedgerAct = 'up' | 'down' | 'first' | 'last' | 'open' | 'choose' | 'toMap' | 'find' | 'help';
+export type LedgerAct = 'up' | 'down' | 'first' | 'last' | 'open' | 'choose' | 'toMap';
 
 const acts: Readonly<Record<string, LedgerAct>> = {
-  ArrowUp: 'up', ArrowDown: 'down', Home: 'first', End: 'last', Enter: 'open', ' ': 'choose', m: 'toMap', '/': 'find', '?': 'help',
+  ArrowUp: 'up', ArrowDown: 'down', Home: 'first', End: 'last', Enter: 'open', ' ': 'choose', m: 'toMap',
 };
 
 export function ledgerAct(event: KeyboardEvent): LedgerAct | null {

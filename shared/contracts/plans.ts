@@ -35,12 +35,37 @@ export const plannedMeasure = z.object({
 });
 export type PlannedMeasureChoice = z.infer<typeof plannedMeasure>;
 
+/** How the spread that a plan assumes is found in earlier readings. */
+export const spreadChoices = z.object({
+  /** What a season counts for beside the one after it: 1 counts all alike. */
+  seasonWeight: z.number().min(0.1).max(1).default(0.7),
+  /** How zones with few readings are pulled towards the wider pool: as their scatter says, by `priorDf`, or not at all. */
+  shrinkage: z.enum(['auto', 'fixed', 'none']).default('auto'),
+  /** Weight of the wider pool, in degrees of freedom. */
+  priorDf: z.number().min(1).max(60).default(6),
+  /** Chance that the spread is no larger than what a cautious plan takes. */
+  upperLevel: z.number().min(0.5).max(0.99).default(0.8),
+  /** Whether readings far from the rest count. */
+  outliers: z.enum(['out', 'in']).default('out'),
+});
+export type SpreadChoices = z.infer<typeof spreadChoices>;
+/** The same as an address carries it. */
+export const spreadQuestion = z.object({
+  seasonWeight: z.coerce.number().optional(),
+  shrinkage: z.string().optional(),
+  priorDf: z.coerce.number().optional(),
+  upperLevel: z.coerce.number().optional(),
+  outliers: z.string().optional(),
+}).pipe(spreadChoices);
+
 /** Everything a person decides about a plan. The same choices on the same ground give the same plan. */
 export const planChoices = z.object({
   measures: z.array(plannedMeasure).min(1, 'Choose at least one measure.').max(12).refine((list) => new Set(list.map(({ code }) => code)).size === list.length, 'Each measure can be in a plan once.'),
   /** Each zone's own mean within its margin, or the mean of the block. */
   question: z.enum(['eachZone', 'block']).default('eachZone'),
   allocation: z.enum(planAllocations).default('leastCost'),
+  /** Zones sampled as one, by number: one count, one draw and one mean for their vines. The zones themselves stay. */
+  pools: z.array(z.array(z.number().int()).min(2, 'Zones are pooled two or more at a time.')).max(20).default([]).refine((pools) => new Set(pools.flat()).size === pools.flat().length, 'Each zone can be in one pool only.'),
   isPilot: z.boolean().default(false),
   pilotVines: z.number().int().min(2).max(500).default(20),
   /** Where a pilot was read, its own spread decides by the two-stage rule. */
@@ -49,7 +74,8 @@ export const planChoices = z.object({
   revisit: z.enum(['same', 'new']).default('same'),
   /** How two readings of one vine go together from visit to visit; 0 when they do not. */
   correlation: z.number().min(0).max(0.99).default(0.5),
-  /** Plan with the spread that is exceeded one time in five only, instead of the estimate. */
+  spread: spreadChoices.prefault({}),
+  /** Plan with the upper limit of the spread (`spread.upperLevel`), instead of the estimate. */
   isCautious: z.boolean().default(false),
   /** Least vines in a zone; the estate's own when left out. */
   minimum: z.number().int().min(2).max(200).optional(),
@@ -76,14 +102,16 @@ const spreadKind = z.enum(['sd', 'cv']);
 export const basisSpread = z.object({
   kind: spreadKind,
   value: z.number(),
-  /** The same raised to what is exceeded one time in five. */
+  /** The same raised to its upper limit. */
   cautious: z.number(),
   source: z.enum(['zone', 'block', 'estate', 'trade']),
   n: z.number().int(),
   seasons: z.array(z.number()),
   df: z.number().nullable(),
   outliers: z.number().int(),
+  /** The zone's own spread with the readings far from the rest, and without them. */
   withOutliers: z.number().nullable(),
+  withoutOutliers: z.number().nullable().default(null),
   /** Mean expected there; null when nothing is known. */
   expectedMean: z.number().nullable(),
   isMeanAssumed: z.boolean(),
@@ -113,7 +141,7 @@ export const basisMeasure = z.object({
 });
 export type BasisMeasure = z.infer<typeof basisMeasure>;
 
-export const basisZone = z.object({ id, number: z.number().int(), name: z.string(), colour: z.string().nullable(), vines: z.number().int(), eligible: z.number().int() });
+export const basisZone = z.object({ id, number: z.number().int(), name: z.string(), colour: z.string().nullable(), vines: z.number().int(), eligible: z.number().int(), /** Zone numbers that it stands for, where zones are sampled as one. */ members: z.array(z.number().int()).optional() });
 export type BasisZone = z.infer<typeof basisZone>;
 
 /** What a plan is computed from: the browser computes the same answer from it as the server stores. */

@@ -28,6 +28,10 @@ export const zoneResult = measuredMean.extend({
 });
 export type ZoneResult = z.infer<typeof zoneResult>;
 
+/** Zones that a plan sampled as one, on a visit of that plan: the mean that its margin was asked for. */
+export const togetherResult = zoneResult.omit({ zone: true }).extend({ zones: z.array(z.number().int()) });
+export type TogetherResult = z.infer<typeof togetherResult>;
+
 export const blockResult = measuredMean.extend({ measure: z.string(), visit: z.string(), zonesWithout: z.array(z.number().int()) });
 export type BlockResult = z.infer<typeof blockResult>;
 
@@ -41,6 +45,7 @@ export const resultsView = z.object({
   /** One a day of readings, oldest first. */
   visits: z.array(z.object({ key: z.string(), on: z.string(), roundIds: z.array(z.string()), seasonId: id })),
   values: z.array(zoneResult),
+  together: z.array(togetherResult),
   block: z.array(blockResult),
   /** Readings whose vine is in no zone of this zoning. */
   outside: z.number().int(),

@@ -1,6 +1,7 @@
 import { smallestScale } from './budget.ts';
-import { mergedSpread, type Division } from './divideZone.ts';
-import { matchMargin, type Margin } from './margins.ts';
+import type { Division } from './divideZone.ts';
+import type { Margin } from './margins.ts';
+import { mergedFigures } from './mergedZones.ts';
 import { planCounts, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
 
 /**
@@ -113,19 +114,8 @@ interface ZonePair {
 }
 
 function mergeMeasure(measure: PlanMeasure, { pair, vines, others }: ZonePair): PlanMeasure {
-  const means = pair.map((at) => measure.expectedMeans[at]!);
-  const [meanA, meanB] = means as [number | null, number | null];
-  const mean = meanA === null || meanB === null ? null : (meanA * vines[0] + meanB * vines[1]) / (vines[0] + vines[1]);
-  const kind = measure.spreads[pair[0]]!.kind;
-  // Without means, spreads that are shares are pooled as shares: nothing is known of a difference.
-  const asShares = kind === 'cv' && mean === null;
-  const parts = pair.map((at, side) => {
-    const sd = asShares ? measure.spreads[at]!.value : matchMargin(measure.spreads[at]!, { kind: 'absolute', value: 1 }, means[side]!).spread;
-    return { vines: vines[side]!, sd, mean: asShares ? null : means[side]! };
-  });
-  const sd = mergedSpread(parts);
-  const value = kind === 'cv' && mean !== null ? sd / Math.abs(mean) : sd;
-  return { ...measure, spreads: [...others(measure.spreads), { kind, value }], expectedMeans: [...others(measure.expectedMeans), mean] };
+  const { spread, mean } = mergedFigures(pair.map((at, side) => ({ vines: vines[side]!, spread: measure.spreads[at]!, mean: measure.expectedMeans[at]! })));
+  return { ...measure, spreads: [...others(measure.spreads), spread], expectedMeans: [...others(measure.expectedMeans), mean], ...(measure.pilots ? { pilots: [...others(measure.pilots), null] } : {}) };
 }
 
 function divided({ plan, divisions = [], limits = DEFAULT_LIMITS }: AdviceQuestion, zonesOver: readonly string[]): ImpracticalOption[] {

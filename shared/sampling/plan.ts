@@ -6,6 +6,7 @@ import { handfulSeconds, handfulSpread } from './handful.ts';
 import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
 import { pilotQuotas } from './pilot.ts';
 import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
+import { pooledBasis } from './pooledZones.ts';
 import { marginLadder, tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
 
 /**
@@ -49,7 +50,8 @@ export function answerTradeOff(basis: PlanBasis, choices: PlanChoices, code: str
 }
 
 /** The calculation's own form of a plan. Throws AnalysisError for a measure the estate does not have. */
-export function questionOf(basis: PlanBasis, choices: PlanChoices): PlanQuestion {
+export function questionOf(unpooled: PlanBasis, choices: PlanChoices): PlanQuestion {
+  const basis = pooledBasis(unpooled, choices.pools);
   return {
     zones: basis.zones.map(({ number, vines, eligible }) => ({ zone: String(number), vines, eligibleVines: eligible })),
     measures: choices.measures.map((choice) => measureOf(basis, choices, choice)),

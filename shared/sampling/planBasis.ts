@@ -1,10 +1,7 @@
-import type { BasisSpread } from '../contracts/plans.ts';
+import type { BasisSpread, SpreadChoices } from '../contracts/plans.ts';
 import type { Spread } from './margins.ts';
 import { planSpread } from './planSpread.ts';
 import type { HistoryReading } from './pooling.ts';
-
-/** How sure a cautious plan is that the spread is not larger: exceeded one time in five (common practice). */
-const CAUTIOUS_LEVEL = 0.8;
 
 /** What is known of one measure when a plan is made. */
 export interface MeasureHistory {
@@ -17,13 +14,14 @@ export interface MeasureHistory {
   readonly typicalMean: number;
   /** Step of the instrument. */
   readonly resolution: number;
+  readonly how: SpreadChoices;
 }
 
 /** Spread and expected mean of a measure in each zone with their sources, as a plan stores and shows them. */
 export function spreadsOf(history: MeasureHistory): BasisSpread[] {
-  const { block, zones, season, readings, tradeDefault, typicalMean, resolution } = history;
+  const { block, zones, season, readings, tradeDefault, typicalMean, resolution, how } = history;
   const isOwnMean = readings.some((reading) => reading.block === block);
-  return planSpread({ block, zones, season, readings, tradeDefault, typicalMean, options: { upperLevel: CAUTIOUS_LEVEL, resolution } }).map((zone) => ({
+  return planSpread({ block, zones, season, readings, tradeDefault, typicalMean, options: { ...how, resolution } }).map((zone) => ({
     kind: zone.spread.kind,
     value: zone.spread.value,
     cautious: zone.planningSpread.value,
@@ -33,6 +31,7 @@ export function spreadsOf(history: MeasureHistory): BasisSpread[] {
     df: zone.df === null || !Number.isFinite(zone.df) ? null : zone.df,
     outliers: zone.outliers,
     withOutliers: zone.ownWithOutliers?.spread ?? null,
+    withoutOutliers: zone.ownWithoutOutliers?.spread ?? null,
     expectedMean: zone.expectedMean,
     isMeanAssumed: !isOwnMean,
   }));

@@ -8,7 +8,8 @@ import { SEASON_WEIGHT, summarise } from './variances.ts';
 /**
  * Which spread a plan may assume in each zone, and where it comes from: the zone's own history, the block's, the
  * estate's, or a trade default for which a pilot is advised. Zones with few readings are pulled towards the wider
- * pool (Smyth 2004). Outlying readings are left out of the advised spread and the spread with them is given too.
+ * pool (Smyth 2004). Outlying readings are left out of the advised spread unless asked for; the zone's own spread is
+ * given both ways.
  */
 export type SpreadSource = 'zone' | 'block' | 'estate' | 'trade';
 
@@ -38,6 +39,8 @@ export interface SpreadOptions {
   /** Plan with the spread that is exceeded with chance 1 − level (0.8 is usual); null plans with the estimate. */
   readonly upperLevel?: number | null;
   readonly resolution?: number;
+  /** 'out' (usual) leaves readings far from the rest out of the advised spread. */
+  readonly outliers?: 'out' | 'in';
 }
 
 export interface ZoneSpread {
@@ -60,6 +63,8 @@ export interface ZoneSpread {
   readonly outliers: number;
   /** The zone's own spread with flagged readings left in; null without repeated readings. */
   readonly ownWithOutliers: PooledSpread | null;
+  /** The same with them left out. */
+  readonly ownWithoutOutliers: PooledSpread | null;
   readonly pilotAdvised: boolean;
   /** Mean of the zone's latest visit, else of the block's, else the typical mean. */
   readonly expectedMean: number | null;
@@ -72,7 +77,7 @@ interface Pool {
   readonly priorDf: number;
 }
 
-const DEFAULTS = { seasonWeight: SEASON_WEIGHT, minimumOwnDf: 4, minimumPoolDf: 4, priorDf: 6, shrinkage: 'auto', upperLevel: null, resolution: 0 } as const;
+const DEFAULTS = { seasonWeight: SEASON_WEIGHT, minimumOwnDf: 4, minimumPoolDf: 4, priorDf: 6, shrinkage: 'auto', upperLevel: null, resolution: 0, outliers: 'out' } as const;
 
 export function planSpread(question: SpreadQuestion): ZoneSpread[] {
   const options: Required<SpreadOptions> = { ...DEFAULTS, ...question.options };
@@ -80,13 +85,14 @@ export function planSpread(question: SpreadQuestion): ZoneSpread[] {
   const all = groupReadings(question.readings);
   const flags = flagByZone(all, pooling.kind, options.resolution);
   const cleaned = all.map((group, i) => ({ ...group, values: group.values.filter((_, j) => !flags[i]![j]) }));
-  const pools = widerPools(question, cleaned, { pooling, options });
+  const counted = options.outliers === 'in' ? all : cleaned;
+  const pools = widerPools(question, counted, { pooling, options });
   return question.zones.map((zone) => {
     const isOwn = (group: ReadingGroup) => group.block === question.block && group.zone === zone;
-    const own = poolGroups(cleaned.filter(isOwn), pooling);
-    const ownWithOutliers = poolGroups(all.filter(isOwn), pooling);
+    const own = poolGroups(counted.filter(isOwn), pooling);
+    const [ownWithOutliers, ownWithoutOutliers] = [poolGroups(all.filter(isOwn), pooling), poolGroups(cleaned.filter(isOwn), pooling)];
     const outliers = all.reduce((sum, group, i) => sum + (isOwn(group) ? flags[i]!.filter(Boolean).length : 0), 0);
-    const chosen = chooseSpread(own, pools, options);
+    const chosen = chooseSpread({ own, floor: roundingVariance(counted.filter(isOwn), pooling.kind, options.resolution) }, pools, options);
     const upperFactor = options.upperLevel === null || chosen.df === null ? 1 : sdUpperFactor(Math.min(chosen.df, 1e6), options.upperLevel);
     const kind = pooling.kind;
     return {
@@ -97,9 +103,10 @@ export function planSpread(question: SpreadQuestion): ZoneSpread[] {
       upperFactor,
       own: own.df > 0 ? own : null,
       ownWithOutliers: ownWithOutliers.df > 0 ? ownWithOutliers : null,
+      ownWithoutOutliers: ownWithoutOutliers.df > 0 ? ownWithoutOutliers : null,
       outliers,
       pilotAdvised: chosen.source === 'trade',
-      expectedMean: expectedMean(cleaned, question, zone),
+      expectedMean: expectedMean(counted, question, zone),
     };
   });
 }
@@ -140,12 +147,21 @@ function blockPrior(question: SpreadQuestion, groups: readonly ReadingGroup[], h
   const fixed = { pooled: block, priorDf: Math.min(options.priorDf, block.df) };
   if (options.shrinkage !== 'auto') return fixed;
   const parts = question.zones
-    .map((zone) => poolGroups(groups.filter((group) => group.zone === zone), pooling))
-    .filter((part) => part.df >= 1)
-    .map((part) => ({ df: part.df, variance: Math.max(part.spread ** 2, options.resolution ** 2 / 12) }));
+    .map((zone) => groups.filter((group) => group.zone === zone))
+    .map((own) => ({ part: poolGroups(own, pooling), floor: roundingVariance(own, pooling.kind, options.resolution) }))
+    .filter(({ part }) => part.df >= 1)
+    .map(({ part, floor }) => ({ df: part.df, variance: Math.max(part.spread ** 2, floor) }));
   if (parts.length < MINIMUM_ZONES_FOR_FIT || parts.some((part) => !(part.variance > 0))) return fixed;
   const prior = fitVariancePrior(parts);
   return { pooled: { ...block, spread: Math.sqrt(prior.variance) }, priorDf: prior.df };
+}
+
+/** Variance that rounding alone leaves, step² / 12, in the form of the spread: of a share, the step is a share of the mean too. */
+function roundingVariance(groups: readonly ReadingGroup[], kind: 'sd' | 'cv', step: number): number {
+  if (kind === 'sd' || step === 0) return step ** 2 / 12;
+  const values = groups.flatMap((group) => group.values);
+  const mean = Math.abs(summarise(values).mean);
+  return mean > 0 ? (step / mean) ** 2 / 12 : 0;
 }
 
 interface ChosenSpread {
@@ -157,13 +173,13 @@ interface ChosenSpread {
   readonly prior: ZoneSpread['prior'];
 }
 
-function chooseSpread(own: PooledSpread, pools: readonly Pool[], options: Required<SpreadOptions>): ChosenSpread {
+function chooseSpread({ own, floor }: { own: PooledSpread; floor: number }, pools: readonly Pool[], options: Required<SpreadOptions>): ChosenSpread {
   // A block with this zone alone has nothing to pull it towards but itself.
   const pool = pools.find((candidate) => candidate.source === 'trade' || candidate.pooled.df - own.df >= 1)!;
   const speaksForItself = own.df >= options.minimumOwnDf;
   const prior = { source: pool.source, spread: pool.pooled.spread, df: pool.priorDf };
   if (speaksForItself && options.shrinkage === 'none') return { value: own.spread, source: 'zone', n: own.n, seasons: own.seasons, df: own.df, prior: null };
-  const ownVariance = Math.max(own.spread ** 2, options.resolution ** 2 / 12);
+  const ownVariance = Math.max(own.spread ** 2, floor);
   const mixed = moderateVariance({ variance: ownVariance, df: own.df }, { variance: pool.pooled.spread ** 2, df: pool.priorDf });
   // With an infinite weight every zone has the pooled value, known as well as the pool knows it.
   const df = mixed.df === Infinity ? pool.pooled.df : mixed.df;

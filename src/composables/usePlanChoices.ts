@@ -1,5 +1,6 @@
 import type { Ref } from 'vue';
 import type { PlanBasis, PlanChoices, PlannedMeasureChoice } from '../../shared/contracts/plans.ts';
+import { joinPools, membersOf, partPool } from '../../shared/sampling/pooledZones.ts';
 import type { ImpracticalOption } from '../../shared/sampling/impractical.ts';
 
 export interface PlanEdits {
@@ -10,6 +11,10 @@ export interface PlanEdits {
   /** All margins by one factor, so that they keep the proportions that were asked for. */
   scaleMargins: (factor: number) => void;
   takeAdvice: (option: ImpracticalOption) => void;
+  /** Two zones, or pools of zones, sampled as one; by their numbers in the plan. */
+  pool: (one: number, other: number) => void;
+  /** Zones of a pool on their own again. */
+  part: (zone: number) => void;
   set: (facts: Partial<PlanChoices>) => void;
 }
 
@@ -31,9 +36,20 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     adjust(code, { spreads: Object.keys(typed).length > 0 ? typed : undefined });
   }
   const scaleMargins = (factor: number) => measures((choice) => ({ ...choice, margin: marginOf(choice) * factor }));
+  /** A spread typed for a zone is not that of its pool, nor the other way round. */
+  function pools(list: number[][], touched: readonly number[]): void {
+    const forget = (choice: PlannedMeasureChoice): PlannedMeasureChoice => {
+      const kept = Object.entries(choice.spreads ?? {}).filter(([zone]) => !touched.includes(Number(zone)));
+      return { ...choice, spreads: kept.length > 0 ? Object.fromEntries(kept) : undefined };
+    };
+    set({ pools: list, measures: choices.value.measures.map((choice) => (choice.spreads ? forget(choice) : choice)) });
+  }
+  const pool = (one: number, other: number) => pools(joinPools(choices.value.pools, one, other), [...membersOf(choices.value.pools, one), ...membersOf(choices.value.pools, other)]);
+  const part = (zone: number) => pools(partPool(choices.value.pools, zone), membersOf(choices.value.pools, zone));
   function takeAdvice(option: ImpracticalOption): void {
     if (option.kind === 'widerMargin') scaleMargins(option.scale);
     if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));
+    if (option.kind === 'poolZones') pool(Number(option.zones[0]), Number(option.zones[1]));
   }
-  return { toggle, adjust, setSpread, scaleMargins, takeAdvice, set };
+  return { toggle, adjust, setSpread, scaleMargins, takeAdvice, pool, part, set };
 }

@@ -2,7 +2,7 @@ import { defineStore } from 'pinia';
 import type { z } from 'zod';
 import type { MeasureChange, MeasureView, newMeasure } from '../../shared/contracts/measures.ts';
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
-import type { DayWalk, NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { DayWalk, NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, SpreadChoices, ZoneDivision } from '../../shared/contracts/plans.ts';
 import type { FieldRound, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PersonView } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
@@ -16,7 +16,7 @@ export const useSamplingStore = defineStore('sampling', () => {
   const base = (estateId: string) => `/api/estates/${estateId}`;
 
   const plans = (estateId: string) => http.get<PlanList>(`${base(estateId)}/plans`);
-  const basis = (estateId: string, zoningId: string) => http.get<PlanBasis>(`${base(estateId)}/zonings/${zoningId}/plan-basis`);
+  const basis = (estateId: string, zoningId: string, how?: SpreadChoices) => http.get<PlanBasis>(`${base(estateId)}/zonings/${zoningId}/plan-basis`, how ? { query: how } : {});
   const plan = (estateId: string, planId: string) => http.get<PlanView>(`${base(estateId)}/plans/${planId}`);
   const make = (estateId: string, zoningId: string, made: NewPlan) => http.post<PlanView>(`${base(estateId)}/zonings/${zoningId}/plans`, made);
   const change = (estateId: string, planId: string, changed: PlanChange) => http.patch<PlanView>(`${base(estateId)}/plans/${planId}`, changed);

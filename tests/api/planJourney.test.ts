@@ -2,6 +2,8 @@ import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { encodeCells } from '../../shared/analysis/cellBytes.ts';
 import { planChoices, type DayWalk, type PlanBasis, type PlanStanding, type PlanView, type PlanWalk, type ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { ResultsView } from '../../shared/contracts/results.ts';
+import type { FieldRound } from '../../shared/contracts/rounds.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { gridOf, loadBlockVines } from '../../server/ground/blockVines.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
@@ -69,6 +71,64 @@ describe('a pilot', () => {
     expect(answer.counts.zones[0]!.visits).toBe(11);
     const made = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'After', measures: [clusters], afterPilot: true })).body as PlanView;
     expect(made.draw[0]!.drawn).toBe(11);
+  });
+});
+
+describe('the spread that a plan assumes', () => {
+  it('follows what the planner says of outliers, old seasons and pull, and the stored plan is made by it', async () => {
+    const { plan, roundId } = await sent({});
+    await read(plan, roundId, ({ zone, drawOrder }) => (zone === 1 ? (drawOrder === 1 ? 90 : 20 + (drawOrder % 5)) : null));
+    const of = async (query: string) => ((await manager.get(`${base}/zonings/${place.zoningId}/plan-basis${query}`)).body as PlanBasis).measures.find(({ code }) => code === 'clusterCount')!.spreads[0]!;
+    const [usual, counted] = [await of('?shrinkage=none'), await of('?shrinkage=none&outliers=in')];
+    expect(usual.outliers).toBe(1);
+    expect(counted.value).toBeCloseTo(counted.withOutliers!, 12);
+    expect(usual.value).toBeCloseTo(counted.withoutOutliers!, 12);
+    expect(counted.value).toBeGreaterThan(2 * usual.value);
+    const [pulled, hard] = [await of('?shrinkage=fixed&priorDf=1'), await of('?shrinkage=fixed&priorDf=60')];
+    expect(Math.abs(hard.value - usual.value)).toBeGreaterThan(Math.abs(pulled.value - usual.value));
+    expect((await of('?upperLevel=0.95')).cautious).toBeGreaterThan((await of('?upperLevel=0.8')).cautious);
+    expect((await manager.get(`${base}/zonings/${place.zoningId}/plan-basis?seasonWeight=7`)).status).toBe(422);
+
+    const spread = { shrinkage: 'none', outliers: 'in' };
+    const made = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'With all', measures: [clusters], spread })).body as PlanView;
+    expect(made.choices.spread).toMatchObject({ ...spread, seasonWeight: 0.7 });
+    expect(made.basis.measures.find(({ code }) => code === 'clusterCount')!.spreads[0]!.value).toBeCloseTo(counted.value, 12);
+    const changed = (await manager.patch(`${base}/plans/${made.id}`).send({ choices: { ...made.choices, spread: { ...made.choices.spread, outliers: 'out' } } })).body as PlanView;
+    expect(changed.draw[0]!.wanted).toBeLessThan(made.draw[0]!.wanted);
+  });
+});
+
+describe('zones sampled as one', () => {
+  it('have one count, one draw and one standing; vines keep their zone; phone, labels and results follow', async () => {
+    const apart = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'Apart', measures: [clusters], seed: 7 })).body as PlanView;
+    const { plan, roundId } = await sent({ pools: [[2, 3]] });
+    expect(plan.draw.map(({ zone }) => zone)).toEqual([1, 2]);
+    expect(plan.vines).toBeLessThan(apart.vines);
+    const pooled = plan.targets.filter(({ zone }) => zone !== 1);
+    expect(pooled).toHaveLength(plan.draw[1]!.drawn);
+    // Strips of equal width: a draw over both gives each about half, and one order through both.
+    expect(new Set(pooled.map(({ zone }) => zone))).toEqual(new Set([2, 3]));
+    expect(pooled.map(({ drawOrder }) => drawOrder).sort((a, b) => a - b)).toEqual(pooled.map((_, i) => i + 1));
+
+    const round = (await manager.get(`${base}/rounds/${roundId}`)).body as FieldRound;
+    expect(round.zones.map(({ number, name, targets }) => [number, name, targets])).toEqual([[1, 'Strip 1', plan.draw[0]!.drawn], [2, 'Strip 2 + Strip 3', pooled.length]]);
+    expect(new Set(round.stops.map(({ zone }) => zone))).toEqual(new Set([1, 2]));
+    expect(round.rows.flatMap(({ runs }) => runs.map(({ zone }) => zone))).not.toContain(3);
+
+    await read(plan, roundId, ({ zone, drawOrder }) => (zone === 1 ? null : 24 + (drawOrder % 4)));
+    const { items } = (await manager.get(`${base}/plans/${plan.id}/standing`)).body as { items: PlanStanding[] };
+    expect(items.map(({ zone, n, planned }) => [zone, n, planned])).toEqual([[1, 0, plan.draw[0]!.drawn], [2, pooled.length, pooled.length]]);
+    const results = (await manager.get(`${base}/zonings/${place.zoningId}/results`)).body as ResultsView;
+    const values = pooled.map(({ drawOrder }) => 24 + (drawOrder % 4));
+    expect(results.together).toEqual([expect.objectContaining({ zones: [2, 3], measure: 'clusterCount', n: pooled.length, more: 0, enough: true })]);
+    expect(results.together[0]!.mean).toBeCloseTo(values.reduce((sum, value) => sum + value, 0) / values.length, 9);
+    expect(results.values.filter(({ zone }) => zone > 1).reduce((sum, { n }) => sum + n, 0)).toBe(pooled.length);
+  });
+
+  it('each zone in one pool only, or the choice is refused by name', async () => {
+    const answer = await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'Twice', measures: [clusters], pools: [[1, 2], [2, 3]] });
+    expect(answer.status).toBe(422);
+    expect(answer.text).toContain('one pool only');
   });
 });
 

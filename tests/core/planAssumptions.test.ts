@@ -5,7 +5,7 @@ import { blockMaths, zoneMaths } from '../../shared/sampling/maths.ts';
 import { pilotReadingsOf } from '../../shared/sampling/pilotReadings.ts';
 import { answerBudget, answerPlan } from '../../shared/sampling/plan.ts';
 
-const spread = (value: number) => ({ kind: 'sd' as const, value, cautious: value * 1.2, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, expectedMean: 22, isMeanAssumed: true });
+const spread = (value: number) => ({ kind: 'sd' as const, value, cautious: value * 1.2, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: 22, isMeanAssumed: true });
 /** Sugar in zones of 900, 600 and 300 vines with spreads 1.1, 0.8, 1.5: the worked example of stratified sampling in allocate.test.ts. */
 function basis(pilots: PlanBasis['measures'][number]['pilots'] = [null, null, null]): PlanBasis {
   return {

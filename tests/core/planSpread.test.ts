@@ -3,6 +3,7 @@ import { pilotQuotas } from '../../shared/sampling/pilot.ts';
 import { planSpread, type SpreadOptions, type SpreadQuestion } from '../../shared/sampling/planSpread.ts';
 import type { HistoryReading } from '../../shared/sampling/pooling.ts';
 import { sdUpperFactor } from '../../shared/sampling/sdInterval.ts';
+import { summarise } from '../../shared/sampling/variances.ts';
 import { largestRemainder } from '../../shared/sampling/rounding.ts';
 
 function expectRelative(actual: number, expected: number, tolerance = 1e-9): void {
@@ -101,11 +102,29 @@ describe('the spread a plan assumes', () => {
     expect(zone!.ownWithOutliers!.spread).toBeGreaterThan(5);
   });
 
+  it('counts an outlier where the planner wants it, and still says which it is and what it does', () => {
+    const [zone] = ask(readings('1', [...evenly(22, 0.6, 9), 2.2]), ['1'], { shrinkage: 'none', outliers: 'in' });
+    expect(zone!.outliers).toBe(1);
+    expectRelative(zone!.spread.value, zone!.ownWithOutliers!.spread);
+    expectRelative(zone!.ownWithoutOutliers!.spread, 0.6);
+    expect(zone!.n).toBe(10);
+  });
+
   it('does not plan with a spread of 0 when the instrument has a step', () => {
     const [zone] = ask(readings('1', [22, 22, 22, 22, 22, 22]), ['1'], { shrinkage: 'none', resolution: 0.2 });
     expect(zone!.own!.spread).toBe(0);
     const mixed = ask(readings('1', [22, 22, 22, 22, 22, 22]), ['1'], { resolution: 0.2 })[0]!;
     expectRelative(mixed.spread.value ** 2, (6 * 1.21 + (5 * 0.04) / 12) / 11);
+  });
+
+  it('takes the step of a count as a share of the mean where spreads are shares', () => {
+    // Counts around 26 with a spread of 7 %: the step of 1 is 1/26 of the mean, and not 100 % of it.
+    const counts = [24, 25, 26, 27, 28, 24, 25, 26, 27, 28];
+    const [zone] = ask(readings('1', counts), ['1'], { shrinkage: 'fixed', resolution: 1 }, { tradeDefault: { kind: 'cv', value: 0.25 } });
+    const own = summarise(counts).variance / 26 ** 2;
+    expectRelative(zone!.spread.value ** 2, (6 * 0.0625 + 9 * own) / 15);
+    const [equal] = ask(readings('1', [26, 26, 26, 26, 26, 26]), ['1'], { shrinkage: 'fixed', resolution: 1 }, { tradeDefault: { kind: 'cv', value: 0.25 } });
+    expectRelative(equal!.spread.value ** 2, (6 * 0.0625 + 5 / 26 ** 2 / 12) / 11);
   });
 
   it("expects the mean of the zone's latest visit, else of the block's", () => {

@@ -5,6 +5,7 @@ import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { PlanBasis, PlanChoices, ZoneDivision } from '../../../shared/contracts/plans.ts';
 import { bestDivision, partMeans, type DivideQuestion, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
+import { membersOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { gridOf } from '../../ground/blockVines.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
@@ -28,12 +29,14 @@ interface LayerOnVines {
 export async function divisionsOf(access: Access, zoningId: string, choices: PlanChoices): Promise<ZoneDivision[]> {
   const { estateId } = access;
   const planGround = await loadPlanGround(estateId, zoningId);
-  const basis = await loadPlanBasis(estateId, planGround);
+  const basis = await loadPlanBasis(estateId, planGround, choices.spread);
   const answer = answerPlan(basis, choices);
   if (answer.advice === null) return [];
   const [layers, readings] = await Promise.all([layersOnVines(estateId, planGround), zonedReadings(estateId, planGround)]);
   const usable = readings.filter(({ vine, excludedReason, state }) => vine >= 0 && excludedReason === null && state !== 'provisional');
-  return answer.advice.zonesOver.flatMap((zone) => divideZone({ zone, basis, answer, choices, layers, readings: usable, planGround }) ?? []);
+  // Zones sampled as one are not divided again: they are parted first.
+  const single = answer.advice.zonesOver.filter((zone) => membersOf(choices.pools, Number(zone)).length === 1);
+  return single.flatMap((zone) => divideZone({ zone, basis, answer, choices, layers, readings: usable, planGround }) ?? []);
 }
 
 interface DivideAsk {

@@ -1,5 +1,5 @@
 import type { Access } from '../../access/access.ts';
-import type { BasisMeasure, PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { BasisMeasure, PlanBasis, SpreadChoices } from '../../../shared/contracts/plans.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { pilotReadingsOf } from '../../../shared/sampling/pilotReadings.ts';
@@ -21,12 +21,12 @@ const enoughOwnReadings = 8;
 const otherBlocksRead = 12;
 
 /** The basis of a plan on a zoning, for the screen that answers while margins move. */
-export async function planBasisOf(access: Access, zoningId: string): Promise<PlanBasis> {
-  return loadPlanBasis(access.estateId, await loadPlanGround(access.estateId, zoningId));
+export async function planBasisOf(access: Access, zoningId: string, how: SpreadChoices): Promise<PlanBasis> {
+  return loadPlanBasis(access.estateId, await loadPlanGround(access.estateId, zoningId), how);
 }
 
 /** What is known when a plan is made on a zoning: zones, measures, and the spread of each with its source. */
-export async function loadPlanBasis(estateId: string, planGround: PlanGround): Promise<PlanBasis> {
+export async function loadPlanBasis(estateId: string, planGround: PlanGround, how: SpreadChoices): Promise<PlanBasis> {
   const { zoning, ground, zoneOf, zones } = planGround;
   const [estate, seasons, measures] = await Promise.all([
     Estate.query().findById(estateId).throwIfNotFound(),
@@ -56,13 +56,14 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround): P
       season: yearOf.get(season.id)!,
       readings: [...(own.get(measure.code) ?? []), ...(others.get(measure.code) ?? [])],
       ofPilot: ofPilot.get(measure.code) ?? [],
+      how,
     })),
     pilot: pilot === null ? null : { planId: pilot.planId, name: pilot.name, vines: pilot.vines, read: new Set(zoned.filter(({ roundId }) => roundId !== null && pilot.roundIds.has(roundId)).map(({ vineKey }) => vineKey)).size },
     settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency },
   };
 }
 
-function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[]; ofPilot: HistoryReading[] }): BasisMeasure {
+function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[]; ofPilot: HistoryReading[]; how: SpreadChoices }): BasisMeasure {
   const { code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit, spreadKind, spreadValue, spreadSource, typicalMean } = measure;
   return {
     code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit,

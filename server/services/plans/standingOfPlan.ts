@@ -1,6 +1,7 @@
 import { planChoices, type PlanBasis, type PlanStanding } from '../../../shared/contracts/plans.ts';
 import type { FieldMeasure } from '../../../shared/contracts/rounds.ts';
 import { standingOf, type FieldValue, type StandingStop } from '../../../shared/field/enoughHere.ts';
+import { headOf, pooledBasis } from '../../../shared/sampling/pooledZones.ts';
 import { intervalOf } from '../../../shared/sampling/precision.ts';
 import type { Access } from '../../access/access.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
@@ -20,9 +21,8 @@ export async function standingOfPlan(access: Access, planId: string): Promise<Pl
     Target.query().where({ estateId, planId }).select('id', 'zoneId', 'drawOrder', 'measureCodes'),
     Reading.query().where({ estateId }).whereIn('roundId', rounds.filter(({ onDate }) => onDate === latest).map(({ id }) => id)).whereNull('excludedReason').whereNotNull('targetId').whereNotExists(Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId')).orderBy('takenAt').select('targetId', 'measureCode', 'value'),
   ]);
-  const { basis } = plan.result as { basis: PlanBasis };
-  const numberOf = new Map(basis.zones.map(({ id, number }) => [id, number]));
-  const stops = targets.map(({ id, zoneId, drawOrder, measureCodes }): StandingStop => ({ targetId: id, zone: numberOf.get(zoneId) ?? 0, drawOrder, measures: measureCodes }));
+  const { basis, sampledZoneOf } = sampledZones(plan);
+  const stops = targets.map(({ id, zoneId, drawOrder, measureCodes }): StandingStop => ({ targetId: id, zone: sampledZoneOf.get(zoneId) ?? 0, drawOrder, measures: measureCodes }));
   const values = readings.map(({ targetId, measureCode, value }): FieldValue => ({ targetId: targetId!, measureCode, value }));
   return basis.zones.flatMap((zone) => measures.map((measure) => standing({ zone: zone.number, vines: zone.vines, measure, stops, zones: basis.zones, values })));
 }
@@ -33,6 +33,13 @@ function standing(ask: { zone: number; vines: number; measure: FieldMeasure; sto
   const standardError = n < 2 ? Number.NaN : (state.sd / Math.sqrt(n)) * Math.sqrt(Math.max(0, 1 - n / vines));
   const half = n < 2 ? null : intervalOf({ value: state.mean, standardError, df: n - 1 }, measure.confidence).halfWidth;
   return { zone, measureCode: measure.code, n, planned, say, more, mean: n === 0 ? null : state.mean, halfWidth: half, margin: Number.isNaN(state.margin) ? null : state.margin, confidence: measure.confidence };
+}
+
+/** Zones of a plan as they are sampled, and the number among them of each zone, by its id. */
+export function sampledZones(plan: Plan): { basis: PlanBasis; sampledZoneOf: Map<string, number> } {
+  const { basis } = plan.result as { basis: PlanBasis };
+  const { pools } = planChoices.parse(plan.options);
+  return { basis: pooledBasis(basis, pools), sampledZoneOf: new Map(basis.zones.map(({ id, number }) => [id, headOf(pools, number)])) };
 }
 
 /** Measures of a plan with the margin and confidence that were chosen for it. */

@@ -7,15 +7,16 @@ import type { ShareInput } from '../../ground/shareRound.ts';
 import type { Plan } from '../../models/Plan.ts';
 import type { Target } from '../../models/Target.ts';
 import type { PlanGround } from './planGround.ts';
+import { sampledZones } from './standingOfPlan.ts';
 
 /** The vines of a plan as a walk takes them, with the seconds that the plan allows at each. */
 export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readonly Target[], how: { gateXY: XY; people: number; end: 'gate' | 'anywhere' }): ShareInput {
   const { basis } = plan.result as { basis: PlanBasis };
   const { measures } = questionOf(basis, planChoices.parse(plan.options));
   const seconds = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
-  const zoneNumber = new Map(basis.zones.map(({ id, number }) => [id, number]));
+  const { sampledZoneOf } = sampledZones(plan);
   const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => ({
-    rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone: zoneNumber.get(zoneId) ?? 0,
+    rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone: sampledZoneOf.get(zoneId) ?? 0,
     serviceS: measureCodes.reduce((sum, code) => sum + (seconds.get(code) ?? 0), 0),
   }));
   if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);

@@ -3,6 +3,7 @@ import type { Transaction } from 'objection';
 import type { z } from 'zod';
 import type { NewPlan, PlanChange, PlanView, planRedraw } from '../../../shared/contracts/plans.ts';
 import { planChoices } from '../../../shared/contracts/plans.ts';
+import { pooledBasis } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
@@ -81,20 +82,22 @@ function lockedRow(trx: Transaction, access: Access, planId: string) {
 
 async function writeDraw(trx: Transaction, planId: string, estateId: string, composed: ComposedPlan): Promise<void> {
   const { planGround, basis, answer, draw } = composed;
-  const { ground, zones } = planGround;
+  const { ground, zones, zoneOf } = planGround;
   await Quota.query(trx).delete().where({ estateId, planId });
   await Target.query(trx).delete().where({ estateId, planId });
+  const sampled = pooledBasis(basis, composed.choices.pools);
   const quotas = answer.counts.zones.flatMap((planned, i) =>
     answer.question.measures.map(({ code }, j) => ({
-      estateId, planId, zoneId: zones[i]!.id, measureCode: code, samples: planned.counts[j]!, drives: planned.drivers.includes(code),
-      spread: basis.measures.find((measure) => measure.code === code)!.spreads[i]!,
+      estateId, planId, zoneId: sampled.zones[i]!.id, measureCode: code, samples: planned.counts[j]!, drives: planned.drivers.includes(code),
+      spread: sampled.measures.find((measure) => measure.code === code)!.spreads[i]!,
     })));
   await Quota.query(trx).insert(quotas);
   if (draw.targets.length === 0) return;
   const idOf = new Map(zones.map(({ id, number }) => [number, id]));
   await Target.query(trx).insert(
     draw.targets.map((target) => ({
-      estateId, planId, zoneId: idOf.get(target.zone)!,
+      // A target keeps the zone that its vine stands in, also where zones are sampled as one.
+      estateId, planId, zoneId: idOf.get(zoneOf[target.vine]!)!,
       rowId: ground.stored[target.rowIndex]!.id, ordinal: target.ordinal,
       position: fromGeoJson({ type: 'Point', coordinates: positionOf(planGround, target.vine) }) as never,
       drawOrder: target.drawOrder, walkOrder: target.walkOrder,

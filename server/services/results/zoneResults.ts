@@ -1,5 +1,6 @@
 import { groupBy } from '../../../shared/groupBy.ts';
-import type { BlockResult, MeasuredMean, ResultsView, ZoneResult } from '../../../shared/contracts/results.ts';
+import { planChoices } from '../../../shared/contracts/plans.ts';
+import type { BlockResult, MeasuredMean, ResultsView, TogetherResult, ZoneResult } from '../../../shared/contracts/results.ts';
 import { howManyMore, intervalOf, type Estimate } from '../../../shared/sampling/precision.ts';
 import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';
 import type { Access } from '../../access/access.ts';
@@ -7,6 +8,8 @@ import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import { Plan } from '../../models/Plan.ts';
+import { Round } from '../../models/Round.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
 
@@ -28,6 +31,8 @@ export interface ZoneReadings {
   readings: ZonedReading[];
   /** Bearing vines by zone number. */
   bearing: Map<number, number>;
+  /** Zones that the plan of a round sampled as one, by round. */
+  poolsOfRound: Map<string, number[][]>;
 }
 
 /** Everything the results of a zoning are computed from. */
@@ -39,10 +44,18 @@ export async function loadZoneReadings(access: Access, zoningId: string, options
   const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
   const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId, ...(options.until ? { until: options.until } : {}) });
   const measured = measures.filter((measure) => readings.some((reading) => reading.measureCode === measure.code));
-  return { zoning, ground, zones, zoneOf, measures: measured, readings, bearing: countBearing(ground, zoneOf) };
+  return { zoning, ground, zones, zoneOf, measures: measured, readings, bearing: countBearing(ground, zoneOf), poolsOfRound: await poolsOfRounds(access.estateId, zoning) };
 }
 
-export function viewResults({ zoning, ground, zones, zoneOf, measures: measured, readings, bearing }: ZoneReadings): ResultsView {
+/** Only of plans on these very zones: numbers of another zoning mean other vines. */
+async function poolsOfRounds(estateId: string, zoning: Zoning): Promise<Map<string, number[][]>> {
+  const plans = await Plan.query().where({ estateId, zoningId: zoning.id }).select('id', 'options');
+  const pooled = new Map(plans.map(({ id, options }) => [id, planChoices.parse(options).pools] as const).filter(([, pools]) => pools.length > 0));
+  const rounds = pooled.size === 0 ? [] : await Round.query().where({ estateId }).whereIn('planId', [...pooled.keys()]).select('id', 'planId');
+  return new Map(rounds.map(({ id, planId }) => [id, pooled.get(planId)!]));
+}
+
+export function viewResults({ zoning, ground, zones, zoneOf, measures: measured, readings, bearing, poolsOfRound }: ZoneReadings): ResultsView {
   const inZones = readings.filter((reading) => reading.zone > 0);
   const values = measured.flatMap((measure) => resultsOf(measure, inZones.filter((reading) => reading.measureCode === measure.code), bearing));
   return {
@@ -54,6 +67,7 @@ export function viewResults({ zoning, ground, zones, zoneOf, measures: measured,
     measures: measured.map(({ code, name, unit, decimals, marginKind, margin, confidence, secondsPerSample }) => ({ code, name, unit, decimals, marginKind, margin, confidence, secondsPerSample })),
     visits: visitsOf(inZones),
     values,
+    together: measured.flatMap((measure) => togetherOf(measure, inZones.filter((reading) => reading.measureCode === measure.code), { bearing, poolsOfRound })),
     block: blockResults(values, bearing),
     outside: readings.length - inZones.length,
   };
@@ -62,27 +76,42 @@ export function viewResults({ zoning, ground, zones, zoneOf, measures: measured,
 function resultsOf(measure: MeasureRecord, readings: ZonedReading[], bearing: Map<number, number>): ZoneResult[] {
   const groups = groupBy(readings, (reading) => `${reading.zone}|${reading.visit}`);
   return [...groups.values()].flatMap((group) => {
-    const counted = group.filter((reading) => reading.excludedReason === null);
-    if (counted.length === 0) return [];
-    const bearingHere = bearing.get(group[0]!.zone) ?? Infinity;
-    const mean = meanOf(visitMean(counted, bearingHere), measure.confidence);
-    const populationSize = Math.max(bearingHere, mean.n);
-    const margin = measure.marginKind === 'absolute' ? measure.margin : Math.abs(mean.mean) * measure.margin;
-    const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: Math.max(mean.sd, 1e-9), margin, confidence: measure.confidence, populationSize });
-    return [
-      {
-        ...mean,
-        zone: group[0]!.zone,
-        measure: measure.code,
-        visit: group[0]!.visit,
-        margin,
-        enough: missing?.enough ?? false,
-        more: missing?.more ?? null,
-        provisional: counted.filter((reading) => reading.state === 'provisional').length,
-        leftOut: group.length - counted.length,
-      },
-    ];
+    const { zone } = group[0]!;
+    const result = resultOfVisit(measure, group, bearing.get(zone) ?? Infinity);
+    return result ? [{ zone, ...result }] : [];
   });
+}
+
+/** Zones sampled as one, visit by visit, from the readings of the rounds that sampled them so. */
+function togetherOf(measure: MeasureRecord, readings: ZonedReading[], { bearing, poolsOfRound }: Pick<ZoneReadings, 'bearing' | 'poolsOfRound'>): TogetherResult[] {
+  const pooled = readings.flatMap((reading) => {
+    const zones = poolsOfRound.get(reading.roundId ?? '')?.find((pool) => pool.includes(reading.zone));
+    return zones ? [{ zones, reading }] : [];
+  });
+  return [...groupBy(pooled, ({ zones, reading }) => `${zones.join('+')}|${reading.visit}`).values()].flatMap((group) => {
+    const { zones } = group[0]!;
+    const result = resultOfVisit(measure, group.map(({ reading }) => reading), zones.reduce((sum, zone) => sum + (bearing.get(zone) ?? 0), 0) || Infinity);
+    return result ? [{ zones, ...result }] : [];
+  });
+}
+
+function resultOfVisit(measure: MeasureRecord, readings: ZonedReading[], bearingHere: number): Omit<ZoneResult, 'zone'> | null {
+  const counted = readings.filter((reading) => reading.excludedReason === null);
+  if (counted.length === 0) return null;
+  const mean = meanOf(visitMean(counted, bearingHere), measure.confidence);
+  const populationSize = Math.max(bearingHere, mean.n);
+  const margin = measure.marginKind === 'absolute' ? measure.margin : Math.abs(mean.mean) * measure.margin;
+  const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: Math.max(mean.sd, 1e-9), margin, confidence: measure.confidence, populationSize });
+  return {
+    ...mean,
+    measure: measure.code,
+    visit: counted[0]!.visit,
+    margin,
+    enough: missing?.enough ?? false,
+    more: missing?.more ?? null,
+    provisional: counted.filter((reading) => reading.state === 'provisional').length,
+    leftOut: readings.length - counted.length,
+  };
 }
 
 function meanOf({ n, mean, sd, estimate }: VisitMean, confidence: number): MeasuredMean {

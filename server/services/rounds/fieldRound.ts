@@ -3,6 +3,7 @@ import type { PlanBasis } from '../../../shared/contracts/plans.ts';
 import type { FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { firstOrdinal } from '../../../shared/geo/vines.ts';
+import { headOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -16,7 +17,7 @@ import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Target } from '../../models/Target.ts';
 import { Zoning } from '../../models/Zoning.ts';
-import { measuresOfPlan } from '../plans/standingOfPlan.ts';
+import { measuresOfPlan, sampledZones } from '../plans/standingOfPlan.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
 import type { RoundWalk, StoredStop } from './roundWalk.ts';
@@ -35,11 +36,10 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     Target.query().where({ estateId, planId: round.planId }),
     Person.query().findByIds(members.map((member) => member.personId)).select('id', 'name'),
   ]);
-  const { basis } = plan.result as { basis: PlanBasis };
+  const { basis, sampledZoneOf } = sampledZones(plan);
   const { shares } = round.walk as RoundWalk;
   const stops = (me ? shares.filter((share) => share.personId === personId) : shares).flatMap((share) => share.stops);
-  const zoneNumber = new Map(basis.zones.map(({ id, number }) => [id, number]));
-  const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, zoneNumber.get(zoneId) ?? 0]));
+  const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, sampledZoneOf.get(zoneId) ?? 0]));
   const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId');
   const { block } = ground;
   const targetOf = new Map(targets.map((target) => [target.id, target]));
@@ -51,7 +51,7 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     people: shares.map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', vines: share.stops.length })),
     zones: basis.zones.map(({ number, name, colour, vines }) => ({ number, name, colour, vines, targets: stops.filter(({ targetId }) => zoneOfTarget.get(targetId) === number).length })),
     measures: await measuresOfPlan(estateId, plan),
-    rows: await fieldRows(estateId, ground, plan),
+    rows: await fieldRows(estateId, { ground, plan, basis }),
     stops: stopsOf(stops),
     others: me ? shares.filter((share) => share.personId !== personId).map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', stops: stopsOf(share.stops) })) : [],
     received: readings.filter((reading) => reading.personId === personId).map(({ id, targetId, measureCode, value }) => ({ id, targetId, measureCode, value, zone: targetId === null ? 0 : zoneOfTarget.get(targetId) ?? 0 })),
@@ -68,9 +68,11 @@ function safetyOf(estate: Estate): FieldRound['safety'] {
   return { emergencyNumber, meetingPoint };
 }
 
-async function fieldRows(estateId: string, ground: BlockVines, plan: Plan): Promise<FieldRow[]> {
+/** Rows with their zones as the plan samples them: for a crew, zones sampled as one are one. */
+async function fieldRows(estateId: string, { ground, plan, basis }: { ground: BlockVines; plan: Plan; basis: PlanBasis }): Promise<FieldRow[]> {
   const zoning = await Zoning.query().findOne({ estateId, id: plan.zoningId }).throwIfNotFound();
-  const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning));
+  const pools = basis.zones.flatMap(({ members }) => (members ? [members] : []));
+  const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning).map((zone) => headOf(pools, zone)));
   return ground.stored.map((row, index) => {
     const [from, to] = [ground.vines.rowStart[index]!, ground.vines.rowStart[index + 1]!];
     const known: FieldRow['known'] = [];

@@ -12,8 +12,11 @@ setWorkerUrl(workerUrl);
 /** The map once it can be drawn on, for parts that sit inside it. */
 export const mapKey: InjectionKey<ShallowRef<MlMap | null>> = Symbol('map');
 
+type Bounds = [number, number, number, number];
+const padding = 56;
+
 /** Makes the map in the given element, keeps its colours in step with the theme, and takes it down again. */
-export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => [number, number, number, number] | null }) {
+export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null }) {
   const map = shallowRef<MlMap | null>(null);
   const failed = shallowRef(false);
   const { theme } = useTheme();
@@ -30,7 +33,7 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
       made = new MlMap({
         container: container.value!,
         style: mapStyle(ink.value),
-        ...(bounds ? { bounds, fitBoundsOptions: { padding: 56 } } : { center: [0, 30], zoom: 1 }),
+        ...(bounds ? { bounds, fitBoundsOptions: { padding } } : { center: [0, 30], zoom: 1 }),
         attributionControl: false, dragRotate: false, pitchWithRotate: false, touchPitch: false, maxZoom: 22, fadeDuration: 0, locale: { 'Map.Title': options.label() },
       });
     } catch {
@@ -41,14 +44,31 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
     made.touchZoomRotate.disableRotation();
     made.keyboard.disableRotation();
     made.once('load', () => (map.value = markRaw(made!)));
+    followSize(made);
   });
+  const ours = { isOurs: true };
+  let shown: Bounds | null = options.start();
+
+  /** What was last shown whole stays whole when its place changes size, until the person looks elsewhere. */
+  function followSize(ready: MlMap): void {
+    const letGo = (event: object) => 'isOurs' in event || (shown = null);
+    ready.on('dragstart', letGo);
+    ready.on('zoomstart', letGo);
+    ready.on('resize', () => shown && showBounds(shown, 0));
+  }
+
+  function showBounds(bounds: Bounds, duration: number): void {
+    shown = bounds;
+    map.value?.fitBounds(bounds, { padding, duration }, ours);
+  }
+
   watch(theme, () => map.value && recolour(map.value, ink.value));
   // After the parts that draw on it: the pen takes its own layers off first.
   onUnmounted(() => {
     map.value = null;
     made?.remove();
   });
-  return { map, ink, failed };
+  return { map, ink, failed, showBounds };
 }
 
 function recolour(map: MlMap, ink: MapInk): void {

@@ -37,7 +37,7 @@ async function buildProgram() {
         target: 'node20',
         minify: true,
         rollupOptions: {
-          input: { zone: 'server/cli/zone.ts', filesThreadEntry: 'server/workers/filesThreadEntry.ts' },
+          input: { zone: 'server/cli/zone.ts', secondThreadEntry: 'server/workers/secondThreadEntry.ts' },
           output: { entryFileNames: '[name].mjs', chunkFileNames: '[name].mjs' },
         },
       },

@@ -1,10 +1,12 @@
 import { existsSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
 import { dirname, resolve } from 'node:path';
 import { AnalysisError } from '../../shared/analysis/analysisError.ts';
-import { makeZoning } from '../../shared/analysis/zoning.ts';
+import { finishZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import type { ZoningInput, ZoningResult } from '../../shared/analysis/zoningTypes.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
-import type { FilesThread } from '../workers/filesThread.ts';
+import type { SecondThread } from '../workers/secondThread.ts';
 import { BadInput, readArguments, type ZoneArguments } from './zoneArguments.ts';
+import { doBeside, type BesideDone, type BesideTasks } from './zoneBeside.ts';
 import { readBlock } from './zoneFiles.ts';
 import { openBeside, readInputs } from './zoneInputs.ts';
 import { zonesGeoJson, zoningReport } from './zoneReport.ts';
@@ -42,7 +44,7 @@ async function run(args: readonly string[], stopwatch: Stopwatch): Promise<strin
   }
 }
 
-async function zoneFiles(asked: ZoneArguments, beside: FilesThread | null, stopwatch: Stopwatch): Promise<string> {
+async function zoneFiles(asked: ZoneArguments, beside: SecondThread | null, stopwatch: Stopwatch): Promise<string> {
   stopwatch.lap('start');
   const block = await readBlock(asked.blockPath, asked.cellSizeM);
   stopwatch.lap('block');
@@ -50,14 +52,30 @@ async function zoneFiles(asked: ZoneArguments, beside: FilesThread | null, stopw
   stopwatch.split(secondsHere, 'waiting for files');
   const { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed } = asked;
   const options = { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed };
-  const result = makeZoning({ grid: block.grid, layers: layers.map(({ layer }) => layer), options, readings }, (stage) => stopwatch.lap(stage));
+  const input = { grid: block.grid, layers: layers.map(({ layer }) => layer), options, readings };
+  const { result, seconds: secondsWeighing } = await zoneInTwo(input, beside, (stage) => stopwatch.lap(stage));
   const chosen = result.candidates[result.chosenK - 1]!;
   const geoJson = JSON.stringify(zonesGeoJson(chosen.zones));
   stopwatch.lap('write');
   const notes = Object.fromEntries(layers.map(({ layer, notes: own }) => [layer.id, own]));
-  const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), secondsBeside, peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
+  const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), secondsBeside: { ...secondsBeside, ...secondsWeighing }, peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
   writeTogether([[asked.outPath, geoJson], ...(asked.reportPath === null ? [] : [[asked.reportPath, JSON.stringify(report, null, 1)] as [string, string]])]);
   return `${chosen.zones.length} ${chosen.zones.length === 1 ? 'zone' : 'zones'} on ${report.grid.areaHa.toFixed(2)} ha; verdict ${result.verdict.verdict}, advised ${result.advisedK}. Written: ${asked.outPath}`;
+}
+
+/** The zoning of `makeZoning`, with the second thread on the work beside the zones. */
+async function zoneInTwo(input: ZoningInput, beside: SecondThread | null, mark: (stage: string) => void): Promise<{ result: ZoningResult; seconds: BesideDone['seconds'] }> {
+  const ground = prepareZoning(input);
+  mark('prepare');
+  const tasks: BesideTasks = { work: ground.beside, taken: new Int32Array(new SharedArrayBuffer(4)) };
+  const away = beside?.weigh(tasks) ?? null;
+  const made = zonesOfEveryNumber(ground, mark);
+  const here = doBeside(tasks);
+  mark('evidence');
+  const there = await away;
+  mark('waiting for evidence');
+  const result = finishZoning(ground, { made, edges: (here.edges ?? there?.edges)!, evidence: (here.evidence ?? there?.evidence)! }, mark);
+  return { result, seconds: there?.seconds ?? {} };
 }
 
 function requireFolder(path: string | null): void {

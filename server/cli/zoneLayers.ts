@@ -12,6 +12,7 @@ import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { toUtmNear } from '../../shared/geo/utmNear.ts';
 import { withSource } from '../importers/byteSource.ts';
 import { sniffFormat } from '../importers/sniffFormat.ts';
+import type { PictureSums, SharedPicture } from '../importers/raster/readRasterOntoGrids.ts';
 import type { VectorUnderstood } from '../importers/understood.ts';
 import { BadInput, weightOf, type LayerArgument } from './zoneArguments.ts';
 import { readOptionsFor, requireAnswered, requireFile, type Block } from './zoneFiles.ts';
@@ -29,10 +30,11 @@ interface Values {
   readonly notes: readonly string[];
 }
 
-export async function readLayer(block: Block, argument: LayerArgument, layerWeights: 'advise' | 'equal'): Promise<ReadLayer> {
+/** `shared`: how the rows of a picture are shared with another thread. */
+export async function readLayer(block: Block, argument: LayerArgument, { layerWeights, shared }: { layerWeights: 'advise' | 'equal'; shared?: SharedPicture }): Promise<ReadLayer> {
   requireFile(argument.path, `--layer ${argument.id}`);
-  const format = await withSource(argument.path, async (source) => sniffFormat(source.read(0, Math.min(4096, source.size)), argument.path).format);
-  const { cells, kind, notes } = await (format === 'geotiff' ? fromPicture(block, argument) : format === 'table' ? fromTable(block, argument) : fromShapes(block, argument));
+  const format = await formatOf(argument);
+  const { cells, kind, notes } = await (format === 'geotiff' ? fromPicture(block, argument, shared) : format === 'table' ? fromTable(block, argument) : fromShapes(block, argument));
   const factor = factorOf(argument);
   const inUnit = factor === 1 ? cells : cells.map((value) => value * factor);
   const type = layerType(kind === 'class' ? 'soilClass' : argument.type);
@@ -40,6 +42,11 @@ export async function readLayer(block: Block, argument: LayerArgument, layerWeig
   refuseImpossible(argument, own);
   const weight = weightOf(argument) ?? (layerWeights === 'equal' ? 1 : null);
   return { layer: { id: argument.id, type: type.id, role: type.role, kind, cells: own, weight }, notes };
+}
+
+/** Told by the first bytes, not by the name. */
+export function formatOf({ path }: LayerArgument) {
+  return withSource(path, async (source) => sniffFormat(source.read(0, Math.min(4096, source.size)), path).format);
 }
 
 function factorOf({ purpose, options }: LayerArgument): number {
@@ -57,22 +64,36 @@ function refuseImpossible({ id, type, path }: LayerArgument, cells: Cells): void
   throw new BadInput(`${path}: layer "${id}" has the value ${Number(odd.toPrecision(6))}${unit === '' ? '' : ` ${unit}`}, outside ${min ?? 'any'} to ${max ?? 'any'}; check band, unit (#unit=) and the mark for missing values (#nodata=).`);
 }
 
-async function fromPicture({ grid, middleLonLat }: Block, argument: LayerArgument): Promise<Values> {
-  const [{ readRasterOntoGrids }, { describeRaster }] = await Promise.all([import('../importers/raster/readRasterOntoGrids.ts'), import('../importers/raster/describeRaster.ts')]);
+async function fromPicture(block: Block, argument: LayerArgument, shared: SharedPicture | undefined): Promise<Values> {
+  const { grid } = block;
+  const { options, request, warnings } = await pictureRequest(block, argument);
+  const { readRasterOntoGrids } = await import('../importers/raster/readRasterOntoGrids.ts');
+  const [reading] = await readRasterOntoGrids(argument.path, options, { ...request, ...(shared === undefined ? {} : { shared }) });
+  const cells = argument.terrain === null ? reading!.cells : terrainOf({ elevation: reading!.cells, cols: grid.cols, cellSizeM: grid.cellSizeM })[argument.terrain === 'slope' ? 'slopeDeg' : argument.terrain];
+  return { cells, kind: argument.options.as === 'classes' ? 'class' : 'number', notes: warnings.map(({ text }) => text) };
+}
+
+/** The sums of those rows of a picture that the other thread does not take. */
+export async function readPictureRows(block: Block, argument: LayerArgument, taken: Int32Array): Promise<PictureSums> {
+  const { options, request } = await pictureRequest(block, argument);
+  const { readSharedRows } = await import('../importers/raster/readRasterOntoGrids.ts');
+  return readSharedRows(argument.path, options, { ...request, taken });
+}
+
+/** What to take from a picture. Throws BadInput when the file or the options leave it open. */
+async function pictureRequest({ grid, middleLonLat }: Block, argument: LayerArgument) {
+  const { describeRaster } = await import('../importers/raster/describeRaster.ts');
   const options = readOptionsFor(argument.path, argument.options, middleLonLat);
   const { bands, questions, warnings } = await describeRaster(argument.path, options);
   requireAnswered(options.fileName, questions);
-  const asClass = argument.options.as === 'classes';
-  const method = argument.purpose === 'elevation' ? 'surface' : asClass ? 'nearest' : 'mean';
+  const method = argument.purpose === 'elevation' ? 'surface' : argument.options.as === 'classes' ? 'nearest' : 'mean';
   const band = argument.options.band === undefined ? bands[0]!.index : Number(argument.options.band);
   if (argument.index === null && argument.options.band === undefined && bands.length > 1) {
     throw new BadInput(`${options.fileName}: it has ${bands.length} bands; say which with #band=1, or which make the index with #red=1,nir=2.`);
   }
   const quantity = argument.index === null ? ({ kind: 'band', band, method } as const) : ({ kind: 'index', index: argument.index, bands: argument.bands } as const);
   const noData = options.answers?.noData;
-  const [reading] = await readRasterOntoGrids(argument.path, options, { quantity, grids: [grid], ...(noData === undefined ? {} : { noData }) });
-  const cells = argument.terrain === null ? reading!.cells : terrainOf({ elevation: reading!.cells, cols: grid.cols, cellSizeM: grid.cellSizeM })[argument.terrain === 'slope' ? 'slopeDeg' : argument.terrain];
-  return { cells, kind: asClass ? 'class' : 'number', notes: warnings.map(({ text }) => text) };
+  return { options, warnings, request: { quantity, grids: [grid], ...(noData === undefined ? {} : { noData }) } };
 }
 
 async function fromTable({ grid, middleLonLat }: Block, argument: LayerArgument): Promise<Values> {

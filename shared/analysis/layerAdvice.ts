@@ -2,7 +2,8 @@
  * Which layers count? Layers measured on the vines or in the soil of this block count the same; two that repeat each other
  * share one voice; terrain and soil maps stay out by default, because their structure says nothing about the vines and lets
  * lines in that the vines do not show. A context layer whose edges coincide with the evidence is offered, never added.
- * In: layers on the grid. Out: one weight a layer with the reason as a code and figures.
+ * In: layers on the grid. Out: one weight a layer with the reason as a code and figures. Weights need no comparison of edges,
+ * which is work of its own on a small plane, so that it may be done elsewhere and added afterwards.
  */
 
 import { correlation } from './agreement.ts';
@@ -10,7 +11,7 @@ import type { Cells, Grid } from './grid.ts';
 import { edgeComparison, type EdgeCoincidence } from './layerAdviceEdges.ts';
 import { quantileOfSorted } from './quantile.ts';
 import type { Random } from './random.ts';
-import { evidenceField } from './verdictField.ts';
+import { evidenceField, type EvidenceField } from './verdictField.ts';
 
 export type LayerAdviceCode = 'evidence' | 'repeats' | 'context-off' | 'context-offered' | 'only-context';
 
@@ -42,11 +43,15 @@ const SPREAD_CELLS = 5000;
 /** A prime, so that the steps do not fall on one column. */
 const FAR_STEP = 7919;
 
-export function adviseLayers(grid: Grid, layers: readonly AdvisableLayer[], random: Random): LayerAdvice[] {
-  const evidence = layers.filter(({ role, kind }) => role === 'evidence' && kind === 'number');
+/** Weights with their reasons; what the edges of context layers say is added by `withEdges`. */
+export function adviseLayers(layers: readonly AdvisableLayer[]): LayerAdvice[] {
+  const evidence = layers.filter(isEvidence);
   if (evidence.length === 0) return layers.map(({ id }) => advice(id, 1, 'only-context'));
-  const coincidences = measuredCoincidences(grid, { evidence, context: layers.filter((layer) => !evidence.includes(layer)) }, random);
-  return layers.map((layer) => (evidence.includes(layer) ? adviseEvidence(layer, evidence) : adviseContext(layer, coincidences.get(layer.id))));
+  return layers.map((layer) => (evidence.includes(layer) ? adviseEvidence(layer, evidence) : advice(layer.id, 0, 'context-off')));
+}
+
+function isEvidence({ role, kind }: AdvisableLayer): boolean {
+  return role === 'evidence' && kind === 'number';
 }
 
 function advice(id: string, weight: number, code: LayerAdviceCode, rest: { about?: string; figures?: Record<string, number> } = {}): LayerAdvice {
@@ -78,21 +83,27 @@ export function correlationOfCells(first: Cells, second: Cells): number {
   return Number.isNaN(r) ? 0 : r;
 }
 
-/** A layer that could not be compared is left out without figures. */
-function adviseContext({ id }: AdvisableLayer, coincidence: EdgeCoincidence | undefined): LayerAdvice {
-  if (coincidence === undefined) return advice(id, 0, 'context-off');
-  const { correlation: edges, excess, deviations } = coincidence;
-  const isOffered = deviations >= LEAST_DEVIATIONS && excess >= LEAST_EXCESS;
-  return advice(id, 0, isOffered ? 'context-offered' : 'context-off', { figures: { correlation: edges, excess, deviations } });
+/** The advice with what was found of the edges of context layers; a layer that could not be compared keeps no figures. */
+export function withEdges(advised: readonly LayerAdvice[], coincidences: ReadonlyMap<string, EdgeCoincidence>): LayerAdvice[] {
+  return advised.map((own) => {
+    const found = coincidences.get(own.id);
+    if (found === undefined) return own;
+    const { correlation: edges, excess, deviations } = found;
+    const isOffered = deviations >= LEAST_DEVIATIONS && excess >= LEAST_EXCESS;
+    return advice(own.id, 0, isOffered ? 'context-offered' : 'context-off', { figures: { correlation: edges, excess, deviations } });
+  });
 }
 
-interface Comparison {
-  readonly evidence: readonly AdvisableLayer[];
-  readonly context: readonly AdvisableLayer[];
+/** All layers to compare on one small plane: the evidence first, then each context layer's columns. Plain data. */
+export interface EdgeTask {
+  readonly field: EvidenceField;
+  readonly evidenceCount: number;
+  readonly context: readonly { readonly id: string; readonly columns: number }[];
 }
 
-/** By id, for the context layers that differ within the block and cover nearly all of what the evidence covers. */
-function measuredCoincidences(grid: Grid, { evidence, context }: Comparison, random: Random): Map<string, EdgeCoincidence> {
+/** Context layers that differ within the block and cover nearly all of what the evidence covers; null when there is none. */
+export function edgeTask(grid: Grid, layers: readonly AdvisableLayer[]): EdgeTask | null {
+  const evidence = layers.filter(isEvidence);
   const covered = (layer: AdvisableLayer) => {
     let both = 0;
     let measured = 0;
@@ -103,12 +114,21 @@ function measuredCoincidences(grid: Grid, { evidence, context }: Comparison, ran
     }
     return measured > 0 && both / measured >= LEAST_COVERED;
   };
-  const compared = context.filter(covered).map((layer) => ({ id: layer.id, columns: columnsOf(layer) })).filter(({ columns }) => columns.length > 0);
-  if (compared.length === 0) return new Map();
+  if (evidence.length === 0) return null;
+  const others = layers.filter((layer) => !isEvidence(layer) && covered(layer));
+  const compared = others.map((layer) => ({ id: layer.id, columns: columnsOf(layer) })).filter(({ columns }) => columns.length > 0);
+  if (compared.length === 0) return null;
   const field = evidenceField(grid, [...evidence.map(({ cells }) => cells), ...compared.flatMap(({ columns }) => columns)], { mostCells: MOST_EDGE_CELLS });
-  const compare = edgeComparison({ plane: field, cellSizeM: field.cellSizeM }, field.layers.slice(0, evidence.length), random);
-  let next = evidence.length;
-  return new Map(compared.map(({ id, columns }) => [id, compare(field.layers.slice(next, (next += columns.length)))]));
+  return { field, evidenceCount: evidence.length, context: compared.map(({ id, columns }) => ({ id, columns: columns.length })) };
+}
+
+/** What each context layer's edges share with the evidence, by id. */
+export function compareEdges(task: EdgeTask | null, random: Random): Map<string, EdgeCoincidence> {
+  if (task === null) return new Map();
+  const { field, evidenceCount, context } = task;
+  const compare = edgeComparison({ plane: field, cellSizeM: field.cellSizeM }, field.layers.slice(0, evidenceCount), random);
+  let next = evidenceCount;
+  return new Map(context.map(({ id, columns }) => [id, compare(field.layers.slice(next, (next += columns)))]));
 }
 
 /** A class is a column of its own, 1 where the class lies, unless it is too rare to have edges worth comparing. */

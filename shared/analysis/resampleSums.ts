@@ -49,14 +49,15 @@ export class CellSums implements PixelSink {
   private readonly noData: readonly (number | null)[];
   private readonly addPart: AddPart;
   private readonly weightOfPixel: number;
+  private readonly byCentre: boolean;
 
   constructor(grid: GridFrame, frame: RasterFrame, { bands, noData = [], weighting = 'auto' }: SumsOptions) {
     this.window = pixelWindow(grid, frame);
     this.sums = { values: new Float64Array(grid.cols * grid.rows * (bands + 1)), bands, cols: grid.cols, rows: grid.rows };
     this.noData = noData;
-    const byCentre = weighting === 'centre' || (weighting === 'auto' && pixelsPerCell(grid, frame) > 3.999);
-    this.weightOfPixel = byCentre && this.window !== null ? pixelAreaInCells(grid, frame) : 1;
-    this.addPart = this.window === null ? () => undefined : wayToAdd(grid, pixelsToCells(grid, frame, this.window), { byCentre, window: this.window });
+    this.byCentre = weighting === 'centre' || (weighting === 'auto' && pixelsPerCell(grid, frame) > 3.999);
+    this.weightOfPixel = this.byCentre && this.window !== null ? pixelAreaInCells(grid, frame) : 1;
+    this.addPart = this.window === null ? () => undefined : wayToAdd(grid, pixelsToCells(grid, frame, this.window), { byCentre: this.byCentre, window: this.window });
   }
 
   add(tile: PixelTile): void {
@@ -70,6 +71,21 @@ export class CellSums implements PixelSink {
       fromRow: Math.max(tile.firstRow, firstRow),
       toRow: Math.min(tile.firstRow + tile.rows, firstRow + rows),
     });
+  }
+
+  /** Whole-number pixels that count in one cell each add up to the same sums in any order. */
+  get isByCentre(): boolean {
+    return this.byCentre;
+  }
+
+  /** The sums so far, which another object for the same raster and grid can take over. */
+  partSums(): Float64Array {
+    return this.sums.values;
+  }
+
+  addPartSums(values: Float64Array): void {
+    const own = this.sums.values;
+    for (let at = 0; at < own.length; at++) own[at]! += values[at]!;
   }
 
   /** Mean of each band per cell; NaN where no pixel with data touched the cell. */

@@ -1,57 +1,88 @@
 /**
- * The zoning of one block, one line a stage: layers on the grid → smoothed and standardised → weights → verdict and advised
- * number → k-means for one to six zones → clean-up → polygons → statistics → test on fruit.
+ * The zoning of one block, one line a stage: layers on the grid → smoothed and standardised → weights → k-means for one to six
+ * zones → clean-up; beside them edges of context layers → verdict and what speaks for each number; then number → polygons →
+ * statistics → test on fruit. The work beside needs small planes only, so that another thread may do it meanwhile.
  * In: grid, layers, options, readings. Out: a record with every candidate, so that a person may choose another; the same
- * input gives the same bytes. Cost on 250 000 cells with two layers: about a second.
+ * input gives the same bytes, whoever does which part. Cost on 250 000 cells with two layers: about a second.
  */
 
 import { polygonsArea } from '../geo/rings.ts';
-import { AnalysisError } from './analysisError.ts';
-import { assertCellCount } from './grid.ts';
-import { adviseLayers } from './layerAdvice.ts';
+import { adviseLayers, compareEdges, edgeTask, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
+import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import { polygonise } from './polygonise.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
-import { MOST_ZONES } from './verdictGap.ts';
 import { adviseZoneCount } from './zoneCount.ts';
 import { cleanZones } from './zoningClean.ts';
-import { weighEvidence } from './zoningEvidence.ts';
-import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones } from './zoningFit.ts';
-import { decideWeights, prepareLayers, weightedColumns } from './zoningPrepare.ts';
-import { rateFits } from './zoningQuality.ts';
+import { evidenceTask, weighEvidence, type EvidenceTask, type ZoningEvidence } from './zoningEvidence.ts';
+import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones, type FeatureTable } from './zoningFit.ts';
+import { checkedOptions } from './zoningOptions.ts';
+import { decideWeights, prepareLayers, weightedColumns, type PreparedLayers } from './zoningPrepare.ts';
+import { rateFits, type FitQuality } from './zoningQuality.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
 import { zoneCountOf } from './zoningStats.ts';
-import { stackBlocks } from './zoningTogether.ts';
+import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
 import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
 export const ENGINE_VERSION = '2';
-
-export const defaultZoningOptions: ZoningOptions = {
-  zones: 'advise',
-  standardise: 'plain',
-  smoothingM: 3,
-  smallestPatchHa: 0.05,
-  narrowestM: 0,
-  principalComponents: false,
-  seed: 1,
-  drawAll: false,
-};
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
 
 /** Throws AnalysisError for input that cannot be zoned. */
 export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): ZoningResult {
-  const options = checkedOptions(input);
-  const { grid, layers: given, readings, ownPart } = stackBlocks(input, input.together ?? []);
-  const areaM2 = polygonsArea(grid.outlineXY);
-  const { layers, warnings } = prepareLayers(grid, given, options);
+  const ground = prepareZoning(input);
   mark('prepare', 0.1);
-  const advisedWeights = adviseLayers(grid, layers.map((layer) => ({ ...layer, cells: layer.smoothed })), streamOf(options.seed, ADVICE_STREAM));
-  const weights = decideWeights(layers, advisedWeights);
+  const edges = compareZoningEdges(ground.beside);
   mark('layer advice', 0.2);
-  const evidence = weighEvidence({ grid, layers, weights, areaM2, seed: options.seed });
+  const evidence = weighEvidence(ground.beside.evidence);
   mark('evidence', 0.5);
+  return finishZoning(ground, { made: zonesOfEveryNumber(ground, mark), edges, evidence }, mark);
+}
+
+/** What can be done beside the zones themselves: plain data of some thousand cells. */
+export interface WorkBeside {
+  readonly seed: number;
+  readonly edges: EdgeTask | null;
+  readonly evidence: EvidenceTask;
+}
+
+export interface ZoningGround {
+  readonly input: ZoningInput;
+  readonly options: ZoningOptions;
+  readonly stacked: StackedBlocks;
+  readonly prepared: PreparedLayers;
+  readonly advised: readonly LayerAdvice[];
+  readonly weights: readonly number[];
+  readonly beside: WorkBeside;
+}
+
+/** Checks everything; throws AnalysisError for input that cannot be zoned. */
+export function prepareZoning(input: ZoningInput): ZoningGround {
+  const options = checkedOptions(input);
+  const stacked = stackBlocks(input, input.together ?? []);
+  const { grid } = stacked;
+  const prepared = prepareLayers(grid, stacked.layers, options);
+  const { layers } = prepared;
+  const advisable = layers.map((layer) => ({ ...layer, cells: layer.smoothed }));
+  const advised = adviseLayers(advisable);
+  const weights = decideWeights(layers, advised);
+  const evidence = evidenceTask({ grid, layers, weights, areaM2: polygonsArea(grid.outlineXY), seed: options.seed });
+  return { input, options, stacked, prepared, advised, weights, beside: { seed: options.seed, edges: edgeTask(grid, advisable), evidence } };
+}
+
+export function compareZoningEdges({ seed, edges }: WorkBeside): Map<string, EdgeCoincidence> {
+  return compareEdges(edges, streamOf(seed, ADVICE_STREAM));
+}
+
+export interface ZonesOfEveryNumber {
+  readonly table: FeatureTable;
+  readonly quality: readonly FitQuality[];
+  /** Cleaned zones of all blocks for k = 1…6. */
+  readonly cleaned: readonly CellZones[];
+}
+
+export function zonesOfEveryNumber({ options, stacked: { grid }, prepared: { layers }, weights }: ZoningGround, mark: StageMark = () => {}): ZonesOfEveryNumber {
   const table = featureTable(grid, weightedColumns(grid, layers, weights), options.principalComponents);
   const fits = fitZones(table, options.seed);
   mark('clusters', 0.7);
@@ -59,23 +90,35 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
   mark('quality', 0.8);
   const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, narrowestM: options.narrowestM, orderBy: layers[0]!.cells }));
   mark('clean-up', 0.85);
+  return { table, quality, cleaned };
+}
+
+export interface ZoningParts {
+  readonly made: ZonesOfEveryNumber;
+  readonly edges: ReadonlyMap<string, EdgeCoincidence>;
+  readonly evidence: ZoningEvidence;
+}
+
+/** Number of zones, polygons and figures from what was made and found. */
+export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
+  const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
   const count = adviseZoneCount({ ...evidence, workable: workableNumbers(cleaned) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
-  const own = cleaned.map(ownPart);
+  const own = cleaned.map(stacked.ownPart);
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
   const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
   const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]! }));
   mark('statistics', 0.98);
-  const fruit = fruitCheck(cleaned[(chosenK > 1 ? chosenK : count.best) - 1]!, readings, options.seed);
+  const fruit = fruitCheck(cleaned[(chosenK > 1 ? chosenK : count.best) - 1]!, stacked.readings, options.seed);
   mark('fruit', 1);
   return {
     engineVersion: ENGINE_VERSION,
     gridKey: input.grid.key,
     options,
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
-    advisedWeights,
+    advisedWeights: withEdges(ground.advised, edges),
     verdict: withFruit(evidence.verdict, fruit),
     fruit,
     advisedK,
@@ -87,30 +130,6 @@ export function makeZoning(input: ZoningInput, mark: StageMark = () => {}): Zoni
     componentShares: table.componentShares,
     warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table })],
   };
-}
-
-/** Defaults filled in and every option checked; layers and readings are checked against the grid. */
-function checkedOptions({ grid, layers, options = {}, readings = [], together = [] }: ZoningInput): ZoningOptions {
-  const all = { ...defaultZoningOptions, ...options };
-  if (all.zones !== 'advise' && !(Number.isInteger(all.zones) && all.zones >= 1 && all.zones <= MOST_ZONES)) {
-    throw new AnalysisError('zones', `${all.zones} zones cannot be made; ask for advise or a whole number from 1 to ${MOST_ZONES}.`);
-  }
-  if (!(all.smoothingM >= 0 && all.smoothingM <= 50)) throw new AnalysisError('smoothing', `A smoothing of ${all.smoothingM} m cannot be used; give 0 to 50 m.`);
-  if (!(all.smallestPatchHa >= 0)) throw new AnalysisError('smallest-patch', `A smallest patch of ${all.smallestPatchHa} ha cannot be used; give 0 or more.`);
-  if (!(all.narrowestM >= 0 && all.narrowestM <= 200)) throw new AnalysisError('narrowest', `A narrowest part of ${all.narrowestM} m cannot be used; give 0 to 200 m.`);
-  if (!Number.isInteger(all.seed)) throw new AnalysisError('seed', `The seed ${all.seed} cannot be used; give a whole number.`);
-  if (layers.length === 0) throw new AnalysisError('no-layer', 'No layer was chosen; choose at least one.');
-  const ids = new Set<string>();
-  for (const layer of layers) {
-    assertCellCount(grid, layer.cells, `Layer "${layer.id}"`);
-    if (ids.has(layer.id)) throw new AnalysisError('layer-twice', `Layer "${layer.id}" was given twice; give each a name of its own.`);
-    ids.add(layer.id);
-  }
-  for (const block of together) for (const layer of block.layers) assertCellCount(block.grid, layer.cells, `Layer "${layer.id}"`);
-  for (const { measure, values } of readings) {
-    if (values.some(({ value }) => !Number.isFinite(value))) throw new AnalysisError('reading', `A reading of "${measure}" is not a number; correct or remove it.`);
-  }
-  return all;
 }
 
 /** The readings with the zone each lies in; those outside the zones are left out. */

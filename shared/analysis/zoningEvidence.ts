@@ -1,6 +1,7 @@
 /**
  * The evidence stage of a zoning: the verdict and what speaks for each number of zones, from the evidence layers alone, on two
- * planes coarse enough to be quick. In: prepared layers with their weights. Out: verdict and curve over k.
+ * planes coarse enough to be quick. In: prepared layers with their weights. Out: verdict and curve over k. The planes are laid
+ * first and weighed afterwards: they are small and plain, so that another thread can weigh them meanwhile.
  */
 
 import type { Grid } from './grid.ts';
@@ -17,13 +18,6 @@ const MOST_GAP_CELLS = 2500;
 const CELLS_PER_PATCH = 4;
 const EVIDENCE_STREAM = 20;
 
-export interface ZoningEvidence {
-  readonly verdict: VerdictResult;
-  readonly curve: readonly GapAtK[];
-  /** Layers that the curve was made from. */
-  readonly layerCount: number;
-}
-
 export interface EvidenceInput {
   readonly grid: Grid;
   readonly layers: readonly PreparedLayer[];
@@ -32,17 +26,43 @@ export interface EvidenceInput {
   readonly seed: number;
 }
 
-/** Without a measured layer in use there is no verdict; the curve is then made from the layers that are used. */
-export function weighEvidence({ grid, layers, weights, areaM2, seed }: EvidenceInput): ZoningEvidence {
+/** The planes to weigh; null where there is nothing to compare with. */
+export interface EvidenceTask {
+  readonly areaM2: number;
+  readonly seed: number;
+  /** For the comparison with random fields, layers times √weight. */
+  readonly gapField: EvidenceField | null;
+  /** For the question at one patch width; measured layers only. */
+  readonly structureField: EvidenceField | null;
+  readonly measuredIds: readonly string[];
+}
+
+export interface ZoningEvidence {
+  readonly verdict: VerdictResult;
+  readonly curve: readonly GapAtK[];
+  /** Layers that the curve was made from. */
+  readonly layerCount: number;
+}
+
+/** Without a measured layer in use there will be no verdict; the curve is then made from the layers that are used. */
+export function evidenceTask({ grid, layers, weights, areaM2, seed }: EvidenceInput): EvidenceTask {
   const used = layers.map((layer, l) => ({ layer, weight: weights[l]! })).filter(({ layer, weight }) => weight > 0 && layer.kind === 'number');
   const measured = used.filter(({ layer }) => layer.role === 'evidence');
   const voters = measured.length > 0 ? measured : used;
-  if (voters.length === 0) return { verdict: judge({ areaM2, layerIds: [], structures: [], curve: [] }), curve: [], layerCount: 0 };
   const cells = voters.map(({ layer }) => layer.smoothed);
-  const curve = gapCurve(weighted(evidenceField(grid, cells, { mostCells: MOST_GAP_CELLS }), voters.map(({ weight }) => weight)), { random: streamOf(seed, EVIDENCE_STREAM) });
-  const structures = measured.length === 0 ? [] : layerStructures(evidenceField(grid, cells, { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH }), areaM2);
-  const verdict = judge({ areaM2, layerIds: measured.map(({ layer }) => layer.id), structures, curve });
-  return { verdict, curve, layerCount: voters.length };
+  return {
+    areaM2,
+    seed,
+    gapField: voters.length === 0 ? null : weighted(evidenceField(grid, cells, { mostCells: MOST_GAP_CELLS }), voters.map(({ weight }) => weight)),
+    structureField: measured.length === 0 ? null : evidenceField(grid, cells, { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH }),
+    measuredIds: measured.map(({ layer }) => layer.id),
+  };
+}
+
+export function weighEvidence({ areaM2, seed, gapField, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
+  const curve = gapField === null ? [] : gapCurve(gapField, { random: streamOf(seed, EVIDENCE_STREAM) });
+  const structures = structureField === null ? [] : layerStructures(structureField, areaM2);
+  return { verdict: judge({ areaM2, layerIds: measuredIds, structures, curve }), curve, layerCount: gapField?.layers.length ?? 0 };
 }
 
 function weighted(field: EvidenceField, weights: readonly number[]): EvidenceField {

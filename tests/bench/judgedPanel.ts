@@ -3,9 +3,9 @@
 import { seededRandom } from '../../shared/analysis/random.ts';
 import type { Verdict } from '../../shared/analysis/verdict.ts';
 import { adviseZoneCount } from '../../shared/analysis/zoneCount.ts';
-import { weighEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { evidenceTask, weighEvidence } from '../../shared/analysis/zoningEvidence.ts';
 import { prepareLayers } from '../../shared/analysis/zoningPrepare.ts';
-import { defaultZoningOptions } from '../../shared/analysis/zoning.ts';
+import { defaultZoningOptions } from '../../shared/analysis/zoningOptions.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { noiseBlock, slopeBlock, zonedBlock, type NoiseKind, type SimulatedBlock, type SlopeKind } from './simulatedBlock.ts';
 
@@ -30,7 +30,7 @@ export interface JudgedBlock {
 export function judgedPanel(options: PanelOptions): JudgedBlock[] {
   return Array.from({ length: options.count }, (_, at) => {
     const block = blockOf(options, at);
-    const { verdict, curve, layerCount } = weighEvidence({ ...evidenceOf(block), seed: options.firstSeed + at });
+    const { verdict, curve, layerCount } = weighEvidence(evidenceTask({ ...evidenceOf(block), seed: options.firstSeed + at }));
     const count = adviseZoneCount({ curve, layerCount, workable: [2, 3, 4, 5, 6] });
     return { verdict: verdict.verdict, advisedK: count.best, trueK: block.k };
   });

@@ -2,10 +2,10 @@ import { describe, expect, it } from 'vitest';
 import { rankCorrelation } from '../../shared/analysis/agreement.ts';
 import { gridOfOutline } from '../../shared/analysis/grid.ts';
 import { pointTable } from '../../shared/analysis/kmeansPoints.ts';
-import { adviseLayers, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
+import { adviseLayers, compareEdges, edgeTask, withEdges, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
 import { edgeComparison, interiorCells } from '../../shared/analysis/layerAdviceEdges.ts';
 import { principalComponents } from '../../shared/analysis/principal.ts';
-import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
+import { randomNormal, seededRandom, type Random } from '../../shared/analysis/random.ts';
 import { gradientSquares } from '../../shared/analysis/verdictCalmCells.ts';
 import { adviseZoneCount } from '../../shared/analysis/zoneCount.ts';
 import { smoothField } from '../bench/simulatedFields.ts';
@@ -15,6 +15,10 @@ const random = seededRandom(5);
 const fieldOf = (lengthM: number) => Float32Array.from(smoothField(grid, lengthM, random));
 const steps = (field: Float32Array, noise: number) => field.map((value) => (value > 0 ? 1 : 0) + noise * randomNormal(random));
 const body = fieldOf(60);
+function advised(layers: readonly AdvisableLayer[], edgeRandom: Random) {
+  return withEdges(adviseLayers(layers), compareEdges(edgeTask(grid, layers), edgeRandom));
+}
+
 const layer = (id: string, role: 'evidence' | 'context', cells: Float32Array, kind: 'number' | 'class' = 'number'): AdvisableLayer => ({ id, role, kind, cells });
 
 describe('edges of two layers', () => {
@@ -45,39 +49,39 @@ describe('edges of two layers', () => {
 
 describe('layer advice', () => {
   it('counts measured layers the same and leaves context out', () => {
-    const advised = adviseLayers(grid, [layer('vigour', 'evidence', steps(body, 0.3)), layer('conductivity', 'evidence', steps(body, 0.5)), layer('elevation', 'context', fieldOf(90))], seededRandom(1));
-    expect(advised.map(({ weight }) => weight)).toEqual([1, 1, 0]);
-    expect(advised.map(({ code }) => code)).toEqual(['evidence', 'evidence', 'context-off']);
+    const found = advised([layer('vigour', 'evidence', steps(body, 0.3)), layer('conductivity', 'evidence', steps(body, 0.5)), layer('elevation', 'context', fieldOf(90))], seededRandom(1));
+    expect(found.map(({ weight }) => weight)).toEqual([1, 1, 0]);
+    expect(found.map(({ code }) => code)).toEqual(['evidence', 'evidence', 'context-off']);
   });
 
   it('lets two layers that repeat each other share one voice', () => {
     const vigour = steps(body, 0.3);
     const again = vigour.map((value) => 100 + 20 * value);
-    const advised = adviseLayers(grid, [layer('may', 'evidence', vigour), layer('june', 'evidence', again), layer('conductivity', 'evidence', fieldOf(40))], seededRandom(1));
-    expect(advised.map(({ weight }) => weight)).toEqual([0.5, 0.5, 1]);
-    expect(advised[0]).toMatchObject({ code: 'repeats', about: 'june', figures: { correlation: expect.closeTo(1, 5) } });
+    const found = advised([layer('may', 'evidence', vigour), layer('june', 'evidence', again), layer('conductivity', 'evidence', fieldOf(40))], seededRandom(1));
+    expect(found.map(({ weight }) => weight)).toEqual([0.5, 0.5, 1]);
+    expect(found[0]).toMatchObject({ code: 'repeats', about: 'june', figures: { correlation: expect.closeTo(1, 5) } });
   });
 
   it('offers a soil map whose edges lie where the vines change, numbers or classes alike, and still does not add it', () => {
     const soil = steps(body, 0);
     for (const kind of ['number', 'class'] as const) {
-      const advised = adviseLayers(grid, [layer('vigour', 'evidence', steps(body, 0.15)), layer('soil', 'context', soil, kind)], seededRandom(1));
-      expect(advised[1]).toMatchObject({ weight: 0, code: 'context-offered' });
-      expect(advised[1]!.figures.deviations).toBeGreaterThan(3);
+      const found = advised([layer('vigour', 'evidence', steps(body, 0.15)), layer('soil', 'context', soil, kind)], seededRandom(1));
+      expect(found[1]).toMatchObject({ weight: 0, code: 'context-offered' });
+      expect(found[1]!.figures.deviations).toBeGreaterThan(3);
     }
   });
 
   it('seldom offers terrain that has nothing to do with the vines', () => {
-    const offered = Array.from({ length: 8 }, (_, seed) => adviseLayers(grid, [layer('vigour', 'evidence', steps(fieldOf(60), 0.3)), layer('elevation', 'context', fieldOf(80))], seededRandom(seed))[1]!).filter(({ code }) => code === 'context-offered');
+    const offered = Array.from({ length: 8 }, (_, seed) => advised([layer('vigour', 'evidence', steps(fieldOf(60), 0.3)), layer('elevation', 'context', fieldOf(80))], seededRandom(seed))[1]!).filter(({ code }) => code === 'context-offered');
     expect(offered.length).toBeLessThanOrEqual(1);
   });
 
   it('uses context when there is nothing else, and says so', () => {
-    expect(adviseLayers(grid, [layer('elevation', 'context', body)], seededRandom(1))).toMatchObject([{ weight: 1, code: 'only-context' }]);
+    expect(advised([layer('elevation', 'context', body)], seededRandom(1))).toMatchObject([{ weight: 1, code: 'only-context' }]);
   });
 
   it('does not fail on a constant context layer', () => {
-    expect(adviseLayers(grid, [layer('vigour', 'evidence', body), layer('flat', 'context', new Float32Array(body.length).fill(3))], seededRandom(1))[1]).toMatchObject({ weight: 0, code: 'context-off' });
+    expect(advised([layer('vigour', 'evidence', body), layer('flat', 'context', new Float32Array(body.length).fill(3))], seededRandom(1))[1]).toMatchObject({ weight: 0, code: 'context-off' });
   });
 });
 

@@ -10,6 +10,7 @@ import { distanceKm } from '../reference/distance.ts';
 import { reprojectionTo } from '../reference/referenceSystem.ts';
 import type { RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
+import type { OpenRaster } from './openRaster.ts';
 import { openPicture, type PictureReader } from './pictureBlocks.ts';
 import { at } from './pixelTransform.ts';
 import { withRaster } from './withRaster.ts';
@@ -29,7 +30,20 @@ export interface RasterOntoGridsRequest {
   /** Part done, 0…1. */
   readonly onProgress?: (done: number) => void;
   readonly signal?: AbortSignal;
+  /** Rows of blocks are shared with other threads that read parts of the same picture. */
+  readonly shared?: SharedPicture;
 }
+
+/** A picture whose rows of blocks are taken one after the other by whoever is free. */
+export interface SharedPicture {
+  /** One number in shared memory: how many bands of rows have been taken. */
+  readonly taken: Int32Array;
+  /** Called when no row is left; the sums of the others, if any. */
+  readonly others: () => Promise<PictureSums>;
+}
+
+/** Sums of each grid from the rows that a thread took; null when the picture cannot be shared. */
+export type PictureSums = readonly Float64Array[] | null;
 
 export interface GridReading {
   readonly gridKey: string;
@@ -48,19 +62,52 @@ export interface GridReading {
 export function readRasterOntoGrids(input: string | Uint8Array, options: RasterReadOptions, request: RasterOntoGridsRequest): Promise<GridReading[]> {
   return naming(options.fileName, () =>
     withRaster(input, options, async (raster, own) => {
-      const understood = describeOpen(raster, own);
-      const bands = bandsOf(request.quantity, understood);
-      const noData = bands.map((index) => (request.noData === undefined ? (understood.bands.find((band) => band.index === index)!.noData) : request.noData));
-      const sinks = request.grids.map((grid) => sinkOf(grid, understood, { method: request.quantity.kind === 'band' ? request.quantity.method : 'mean', bands: bands.length, noData }));
-      if (sinks.every((sink) => sink.window === null)) throw notOverlapping(understood, request.grids);
-      const unmarked = noData[0] === null;
-      const reader = await openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: unmarked, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });
-      await feed(reader, sinks, request);
+      const { understood, bands, sinks, reader } = await openOntoGrids(raster, own, request);
+      const { shared } = request;
+      const isShared = shared !== undefined && isExactInAnyOrder(raster, sinks);
+      await feed(reader, sinks, { ...request, taken: isShared ? shared.taken : undefined });
+      const others = await shared?.others();
+      if (isShared) others?.forEach((sums, at) => (sinks[at] as CellSums).addPartSums(sums));
       const readings = request.grids.map((grid, at) => finish(grid, sinks[at]!, { understood, bands, request }));
       if (readings.every(({ cells }) => cells.every(Number.isNaN))) throw noValues(readings.length);
       return readings;
     }),
   );
+}
+
+/** The sums of those rows of blocks that nobody else takes, for `SharedPicture.others` of another thread. */
+export function readSharedRows(input: string, options: RasterReadOptions, { taken, ...request }: RasterOntoGridsRequest & { readonly taken: Int32Array }): Promise<PictureSums> {
+  return naming(options.fileName, () =>
+    withRaster(input, options, async (raster, own) => {
+      const { sinks, reader } = await openOntoGrids(raster, own, request);
+      if (!isExactInAnyOrder(raster, sinks)) return null;
+      await feed(reader, sinks, { ...request, taken });
+      return sinks.map((sink) => (sink as CellSums).partSums());
+    }),
+  );
+}
+
+interface OpenOntoGrids {
+  readonly understood: RasterUnderstood;
+  readonly bands: readonly number[];
+  readonly sinks: readonly WindowedSink[];
+  readonly reader: PictureReader;
+}
+
+async function openOntoGrids(raster: OpenRaster, options: RasterReadOptions, request: RasterOntoGridsRequest): Promise<OpenOntoGrids> {
+  const understood = describeOpen(raster, options);
+  const bands = bandsOf(request.quantity, understood);
+  const noData = bands.map((index) => (request.noData === undefined ? (understood.bands.find((band) => band.index === index)!.noData) : request.noData));
+  const sinks = request.grids.map((grid) => sinkOf(grid, understood, { method: request.quantity.kind === 'band' ? request.quantity.method : 'mean', bands: bands.length, noData }));
+  if (sinks.every((sink) => sink.window === null)) throw notOverlapping(understood, request.grids);
+  const unmarked = noData[0] === null;
+  const reader = await openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: unmarked, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });
+  return { understood, bands, sinks, reader };
+}
+
+/** Sums of whole numbers below 2⁵³ have no rounding, so it does not matter who adds which rows. */
+function isExactInAnyOrder({ layout }: OpenRaster, sinks: readonly WindowedSink[]): boolean {
+  return layout.format !== 'float' && layout.bits <= 16 && sinks.every((sink) => sink instanceof CellSums && sink.isByCentre);
 }
 
 /** Band numbers to read, in the order of the index's formula. */
@@ -84,33 +131,54 @@ function sinkOf(grid: Grid, understood: RasterUnderstood, options: { method: Res
   return resampler(grid, frame, options);
 }
 
+/** Rows of pixels that a thread takes at once when several read one picture. */
+const SHARED_ROWS = 64;
+
+type FeedOptions = Pick<RasterOntoGridsRequest, 'onProgress' | 'signal'> & { readonly taken?: Int32Array | undefined };
+
 /** Decodes every block of pixels that some grid needs once, and gives it to each of these grids. */
-async function feed(reader: PictureReader, sinks: readonly WindowedSink[], { onProgress, signal }: RasterOntoGridsRequest): Promise<void> {
-  const { blockWidth, blockHeight, blocksAcross, blocksDown } = reader.layout;
-  const needed: { blockCol: number; blockRow: number; takers: WindowedSink[] }[] = [];
-  for (let blockRow = 0; blockRow < blocksDown; blockRow++) {
-    const inRow = sinks.filter(({ window }) => window !== null && window.firstRow < (blockRow + 1) * blockHeight && window.firstRow + window.rows > blockRow * blockHeight);
-    for (let blockCol = 0; inRow.length > 0 && blockCol < blocksAcross; blockCol++) {
-      const takers = inRow.filter(({ window }) => window!.firstCol < (blockCol + 1) * blockWidth && window!.firstCol + window!.cols > blockCol * blockWidth);
-      if (takers.length > 0) needed.push({ blockCol, blockRow, takers });
-    }
-  }
-  const pixels = needed.length * blockWidth * blockHeight;
+async function feed(reader: PictureReader, sinks: readonly WindowedSink[], { onProgress, signal, taken }: FeedOptions): Promise<void> {
+  const { blockWidth, blockHeight } = reader.layout;
+  const needed = neededBlocks(reader, sinks);
+  const pixels = needed.reduce((sum, row) => sum + row.length, 0) * blockWidth * blockHeight;
   if (pixels > limits.rasterPixels) {
     throw new ImportProblem({ code: 'too-large', fact: `${Math.round(pixels / 1e6)} million pixels lie over the blocks; ${limits.rasterPixels / 1e6} million is the most.`, remedy: 'Export it with larger pixels; 0.1 m is fine enough for vine rows.', params: { millionPixels: Math.round(pixels / 1e6) } });
   }
-  for (let i = 0; i < needed.length; i++) {
-    const { blockCol, blockRow, takers } = needed[i]!;
-    const tile = reader.read(blockCol, blockRow);
-    if (tile !== null) for (const taker of takers) taker.add(tile);
-    if (i % 32 === 0) {
-      // Lets progress and cancelling through; the reading itself never waits.
-      await new Promise((resume) => setImmediate(resume));
-      signal?.throwIfAborted();
-      onProgress?.(i / needed.length);
+  const rowsAtOnce = Math.ceil(SHARED_ROWS / blockHeight);
+  let own = 0;
+  const next = () => (taken === undefined ? own++ : Atomics.add(taken, 0, 1));
+  for (let band = next(); band * rowsAtOnce < needed.length; band = next()) {
+    for (const { blockCol, blockRow, takers } of needed.slice(band * rowsAtOnce, (band + 1) * rowsAtOnce).flat()) {
+      const tile = reader.read(blockCol, blockRow);
+      if (tile !== null) for (const taker of takers) taker.add(tile);
     }
+    // Lets progress and cancelling through; the reading itself never waits.
+    await new Promise((resume) => setImmediate(resume));
+    signal?.throwIfAborted();
+    onProgress?.(Math.min(1, ((band + 1) * rowsAtOnce) / needed.length));
   }
   onProgress?.(1);
+}
+
+interface NeededBlock {
+  readonly blockCol: number;
+  readonly blockRow: number;
+  readonly takers: readonly WindowedSink[];
+}
+
+/** Blocks over some grid, row by row; rows without any are left out. */
+function neededBlocks({ layout: { blockWidth, blockHeight, blocksAcross, blocksDown } }: PictureReader, sinks: readonly WindowedSink[]): NeededBlock[][] {
+  const needed: NeededBlock[][] = [];
+  for (let blockRow = 0; blockRow < blocksDown; blockRow++) {
+    const inRow = sinks.filter(({ window }) => window !== null && window.firstRow < (blockRow + 1) * blockHeight && window.firstRow + window.rows > blockRow * blockHeight);
+    const row: NeededBlock[] = [];
+    for (let blockCol = 0; inRow.length > 0 && blockCol < blocksAcross; blockCol++) {
+      const takers = inRow.filter(({ window }) => window!.firstCol < (blockCol + 1) * blockWidth && window!.firstCol + window!.cols > blockCol * blockWidth);
+      if (takers.length > 0) row.push({ blockCol, blockRow, takers });
+    }
+    if (row.length > 0) needed.push(row);
+  }
+  return needed;
 }
 
 interface Finishing {

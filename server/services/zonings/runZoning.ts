@@ -1,6 +1,6 @@
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import { cellAt } from '../../../shared/analysis/grid.ts';
-import { defaultZoningOptions } from '../../../shared/analysis/zoning.ts';
+import { defaultZoningOptions } from '../../../shared/analysis/zoningOptions.ts';
 import type { BlockInput, ZoningInput, ZoningReadings, ZoningResult } from '../../../shared/analysis/zoningTypes.ts';
 import { zoningOptions, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
 import { groupBy } from '../../../shared/groupBy.ts';

@@ -1,0 +1,29 @@
+import { parentPort } from 'node:worker_threads';
+import { BadInput } from '../cli/zoneArguments.ts';
+import { readPart } from '../cli/zonePart.ts';
+import { toCarried } from './carriedError.ts';
+import type { ThreadAnswer, ThreadRequest } from './secondThread.ts';
+
+/** The thread's side: one answer a request. What the next request needs is loaded while it waits. */
+
+const readers = Promise.allSettled([import('../importers/points/readPoints.ts'), import('../importers/vector/readVectors.ts'), import('../importers/raster/readRasterOntoGrids.ts')]);
+const loadBeside = () => import('../cli/zoneBeside.ts');
+
+parentPort!.on('message', (request: ThreadRequest) => {
+  void answerTo(request).then((answer) => {
+    parentPort!.postMessage(answer);
+    void loadBeside();
+  });
+});
+
+async function answerTo(request: ThreadRequest): Promise<ThreadAnswer> {
+  try {
+    if ('weigh' in request) return { value: (await loadBeside()).doBeside(request.weigh) };
+    await readers;
+    return { value: await readPart(request.read) };
+  } catch (error) {
+    if (error instanceof BadInput) return { bad: error.message };
+    const refused = toCarried(error);
+    return refused === null ? { fault: error instanceof Error ? (error.stack ?? error.message) : String(error) } : { refused };
+  }
+}

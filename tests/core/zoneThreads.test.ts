@@ -1,0 +1,83 @@
+import { spawnSync } from 'node:child_process';
+import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join, resolve } from 'node:path';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { finishZoning, makeZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import { doBeside } from '../../server/cli/zoneBeside.ts';
+import { runZoneCommand } from '../../server/cli/zoneCommand.ts';
+import { readRasterOntoGrids, readSharedRows, type PictureSums } from '../../server/importers/raster/readRasterOntoGrids.ts';
+import { layersOf } from '../bench/judgedPanel.ts';
+import { writeCase, type WrittenCase } from '../bench/simulatedFiles.ts';
+
+/** Two threads share the work of the zoning command; whoever does which part, the zones are those of one thread. */
+
+let folder = '';
+let written: WrittenCase;
+
+beforeAll(() => {
+  folder = mkdtempSync(join(tmpdir(), 'zone-threads-'));
+  written = writeCase(folder, { name: 'shared', areaHa: 3, pixelM: 0.25, seed: 6, k: 3 });
+});
+
+afterAll(() => rmSync(folder, { recursive: true, force: true }));
+
+describe('a picture whose rows two threads take', () => {
+  const counter = (value: number) => Int32Array.of(value);
+  const read = () => {
+    const options = { fileName: 'vigour.tif', estateLonLat: null };
+    const request = { quantity: { kind: 'index', index: 'ndvi', bands: { red: 1, nir: 2 } }, grids: [written.block.grid] } as const;
+    const path = join(folder, 'vigour.tif');
+    return {
+      alone: () => readRasterOntoGrids(path, options, request),
+      rows: (taken: Int32Array) => readSharedRows(path, options, { ...request, taken }),
+      with: (taken: Int32Array, others: () => Promise<PictureSums>) => readRasterOntoGrids(path, options, { ...request, shared: { taken, others } }),
+    };
+  };
+
+  it('has the same cells to the bit as one read alone, however the rows fall', async () => {
+    const picture = read();
+    const [alone] = await picture.alone();
+    const taken = counter(0);
+    const away = picture.rows(taken);
+    const [together] = await picture.with(taken, () => away);
+    expect(taken[0]).toBeGreaterThan(4);
+    expect((await away)!.some((sums) => sums.some((sum) => sum > 0))).toBe(true);
+    expect(together!.cells).toEqual(alone!.cells);
+    expect(together!.covered).toEqual(alone!.covered);
+  });
+
+  it('needs the rows of the other: without them cells are missing', async () => {
+    const [half] = await read().with(counter(2), async () => null);
+    expect(half!.cells.filter(Number.isNaN).length).toBeGreaterThan((await read().alone())[0]!.cells.filter(Number.isNaN).length);
+  });
+});
+
+describe('the work beside the zones', () => {
+  it('gives the same record whichever thread does which task', () => {
+    const { grid, truth } = written.block;
+    const input = { grid, layers: [...layersOf(written.block), { id: 'soil', type: 'soil', role: 'context', kind: 'number', cells: Float32Array.from(truth), weight: null } as const] };
+    const whole = JSON.stringify(makeZoning(input));
+    for (const first of [0, 1, 2]) {
+      const ground = prepareZoning(input);
+      const work = structuredClone(ground.beside);
+      const [there, here] = [doBeside({ work, taken: Int32Array.of(first) }), doBeside({ work: ground.beside, taken: Int32Array.of(first === 1 ? 0 : 2 - first) })];
+      const parts = { made: zonesOfEveryNumber(ground), edges: (there.edges ?? here.edges)!, evidence: (there.evidence ?? here.evidence)! };
+      expect(JSON.stringify(finishZoning(ground, parts))).toBe(whole);
+    }
+  });
+});
+
+describe('the built program, which runs in two threads', () => {
+  it('writes the bytes that one thread writes', { timeout: 120_000 }, async () => {
+    const at = (name: string) => join(folder, name);
+    const args = (out: string) => ['--block', at('block.geojson'), '--layer', `ndvi=${at('vigour.tif')}#red=1,nir=2`, '--layer', `conductivity=${at('ec.csv')}#value=ec_deep_mS_m`, '--layer', `elevation=${at('dem.tif')}`, '--readings', at('samples.csv'), '--out', at(out)];
+    expect(await runZoneCommand(args('one.geojson'))).toMatchObject({ exitCode: 0 });
+    const program = resolve(import.meta.dirname, '../../scripts/zone.mjs');
+    for (const out of ['two.geojson', 'again.geojson']) {
+      const { status, stderr } = spawnSync(process.execPath, [program, ...args(out)], { encoding: 'utf8' });
+      expect(status, stderr).toBe(0);
+      expect(readFileSync(at(out), 'utf8')).toBe(readFileSync(at('one.geojson'), 'utf8'));
+    }
+  });
+});

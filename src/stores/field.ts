@@ -12,6 +12,7 @@ import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../of
 import { emptyPhone } from '../offline/emptyPhone.ts';
 import { addEntries, allEntries, entriesOfRound, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
 import { addPhoto, sendPhotos } from '../offline/photoBox.ts';
+import { pruneReceived } from '../offline/prune.ts';
 import { totalWaiting } from '../offline/waiting.ts';
 
 const clockToleranceMs = 5 * 60_000;
@@ -88,6 +89,7 @@ export const useFieldStore = defineStore('field', () => {
     }));
     await keepList(owner, mine, new Date());
     await dropOtherRounds(owner, mine.map(({ id }) => id));
+    if ((await pruneReceived(new Date())) > 0) await count();
   }
 
   /** Opens a round from the phone; from the server only when the phone does not have it. */

@@ -5,7 +5,7 @@ import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { PlanList } from '../../shared/contracts/plans.ts';
 import type { ReadingView } from '../../shared/contracts/readings.ts';
 import { startApplication, type Application } from './support/application.ts';
-import { heldBy, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
+import { heldBy, keepOld, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
 
 const names = ['Ana Reed', 'Ben Moor', 'Cleo Lane'];
 const pin = '4711';
@@ -288,5 +288,17 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id }) => id)).toEqual([]);
     const { items } = await office.get<{ items: { action: string }[] }>('/audit');
     expect(items.map(({ action }) => action)).toContain('conflicts.settle');
+  });
+
+  it('a phone forgets what was received weeks ago, and never what was not', async () => {
+    const { page } = phones[1]!;
+    await keepOld(page, [
+      { id: crypto.randomUUID(), days: 20, received: 1 }, { id: 'recent', days: 3, received: 1 },
+      { id: 'unsent', days: 400, received: 0 }, { id: 'openRound', days: 20, received: 1, roundId },
+    ]);
+    const before = await storedBy(page);
+    await page.goto(page.url().replace(/\/field.*/, '/field'));
+    await expect.poll(async () => (await storedBy(page)).length).toBe(before.length - 1);
+    expect((await storedBy(page)).map(({ id }) => id)).toEqual(expect.arrayContaining(['recent', 'unsent', 'openRound']));
   });
 });

@@ -83,6 +83,34 @@ export function storedBy(page: Page): Promise<{ id: string; kind: string; receiv
   }));
 }
 
+interface OldEntry {
+  id: string;
+  days: number;
+  received: 0 | 1;
+  roundId?: string;
+}
+
+/** Lays copies of an entry, so many days old, into the phone's own store; of a round that is gone, unless told. */
+export function keepOld(page: Page, old: readonly OldEntry[]): Promise<void> {
+  return page.evaluate((old) => new Promise<void>((resolve, reject) => {
+    const opening = indexedDB.open('patchrow-field');
+    opening.onerror = () => reject(new Error('no store'));
+    opening.onsuccess = () => {
+      const transaction = opening.result.transaction('entries', 'readwrite');
+      const entries = transaction.objectStore('entries');
+      const reading = entries.getAll();
+      reading.onsuccess = () => {
+        const model = reading.result.find(({ kind }: { kind: string }) => kind === 'reading') as { reading: object };
+        for (const { id, days, received, roundId } of old) entries.add({ ...model, id, reading: { ...model.reading, id }, roundId: roundId ?? 'gone', received, at: new Date(Date.now() - days * 86_400_000).toISOString() });
+      };
+      transaction.oncomplete = () => {
+        opening.result.close();
+        resolve();
+      };
+    };
+  }), old);
+}
+
 interface FieldStore {
   round: FieldRound;
   waiting: number;

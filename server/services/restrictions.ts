@@ -1,6 +1,7 @@
 import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Missing, Unusable } from '../errors.ts';
+import { peopleWhoMay } from '../ground/peopleWhoMay.ts';
 import { restrictionViews } from '../ground/restrictionViews.ts';
 import { queueMail } from '../mail/outbox.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
@@ -11,11 +12,12 @@ import { Estate } from '../models/Estate.ts';
 import { Membership } from '../models/Membership.ts';
 import { Person } from '../models/Person.ts';
 
-/** Restrictions of the estate or of one block, newest first; those in force are marked. */
-export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<RestrictionView[]> {
+/** Restrictions of the estate or of one block, newest first; those in force are marked. With the names of those who may lift one. */
+export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<{ items: RestrictionView[]; lifters: string[] }> {
   const query = EntryRestriction.query().where({ estateId: access.estateId }).orderBy('endsAt', 'desc').limit(300);
   if (options.blockId) query.where({ blockId: options.blockId });
-  return restrictionViews(access.estateId, await query, options.now);
+  const lifters = await peopleWhoMay(undefined, access.estateId, 'restrictions.lift');
+  return { items: await restrictionViews(access.estateId, await query, options.now), lifters: lifters.map(({ name }) => name) };
 }
 
 /** Sets a restriction and tells everybody with access: safety notices cannot be muted. */
@@ -47,6 +49,7 @@ export async function liftRestriction(access: Access, restrictionId: string, opt
 
 async function tellEverybody(access: Access, blockName: string, input: NewRestriction, trx: Parameters<typeof queueMail>[0]): Promise<void> {
   const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const lifters = (await peopleWhoMay(trx, access.estateId, 'restrictions.lift')).map(({ name }) => name);
   const setter = await Person.query(trx).findById(access.personId).throwIfNotFound();
   const readers = await Person.query(trx)
     .whereNotNull('email')
@@ -56,7 +59,7 @@ async function tellEverybody(access: Access, blockName: string, input: NewRestri
       estateId: access.estateId,
       kind: 'restriction',
       to: { address: reader.email!, name: reader.name, language: reader.language },
-      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: setter.name },
+      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: setter.name, lifters: new Intl.ListFormat(reader.language, { type: 'disjunction' }).format(lifters) },
     });
   }
 }

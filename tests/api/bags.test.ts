@@ -2,8 +2,9 @@ import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Bag } from '../../server/models/Bag.ts';
+import { MailMessage } from '../../server/models/MailMessage.ts';
 import { Reading } from '../../server/models/Reading.ts';
-import { labelCode } from '../../shared/field/labelCode.ts';
+import { labelCode, spellLabelCode } from '../../shared/field/labelCode.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
@@ -26,7 +27,7 @@ beforeAll(async () => {
 });
 afterAll(() => app.close());
 beforeEach(async () => {
-  await app.knex.raw('truncate readings, bags cascade');
+  await app.knex.raw('truncate readings, bags, mail_messages cascade');
 });
 
 const base = () => `/api/estates/${estate.estateId}`;
@@ -114,6 +115,19 @@ describe('two labels exchanged', () => {
     expect(await Reading.query().findOne({ bagId: west.id })).toMatchObject({ value: 25 });
     expect(await AuditEntry.query().findOne({ estateId: estate.estateId, action: 'bags.swap' })).toMatchObject({ reason: 'Labels mixed up in the box' });
     expect((await close(agronomist, west))[0]!.state).toBe('received');
+  });
+
+  it('are told to those who closed, sent and measured them, and not to who exchanged them', async () => {
+    const [west, east] = [bag({ code: labelCode(1003) }), bag({ code: labelCode(1004), vines: vinesOf(44, 2) })];
+    await close(agronomist, west);
+    await close(manager, east);
+    await lab.post(`${base()}/bags/received`, { codes: [west.code, east.code] });
+    await brix(west.id, 20);
+    await lab.post(`${base()}/bags/swap`, { codes: [west.code, east.code], reason: 'Labels mixed up in the box' });
+    const mails = await MailMessage.query().where({ kind: 'bagSwap' }).orderBy('toName');
+    expect(mails.map(({ toName }) => toName)).toEqual(['Ada Birch', 'Mara Holt']);
+    expect(mails[0]!.subject).toContain(spellLabelCode(west.code));
+    for (const words of ['Wim Roe', 'Labels mixed up in the box', 'changed places: 1']) expect(mails[0]!.bodyText).toContain(words);
   });
 
   it('give a missing bag the label that lies on the bench', async () => {

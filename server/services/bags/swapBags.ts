@@ -5,10 +5,11 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { holdersOf } from './bagContext.ts';
 import { moveLabResults, seasonFinder } from './labels.ts';
+import { tellOfSwap } from './tellOfSwap.ts';
 
 /**
  * Exchanges the labels of two bags in one step. What was seen at the row stays with the closing; label, receipt and the
- * lab's figures change places. With an extra bag it gives a bag that is missing the label that lies on the bench.
+ * lab's figures change places, and those concerned get a mail. With an extra bag it gives a bag that is missing the label that lies on the bench.
  */
 export async function swapBags(access: Access, input: { codes: readonly [string, string]; reason: string }, now: Date): Promise<void> {
   const { estateId } = access;
@@ -22,6 +23,7 @@ export async function swapBags(access: Access, input: { codes: readonly [string,
       { from: one.id, to: { ...other, seasonId: seasonOf(other) } },
       { from: other.id, to: { ...one, seasonId: seasonOf(one) } },
     ]);
+    await tellOfSwap(trx, access, { one, other, reason: input.reason, figures: moved });
     await writeAudit(trx, access, {
       action: 'bags.swap', subjectType: 'bags', subjectId: one.id, subjectName: `${one.code}, ${other.code}`, reason: input.reason,
       before: { [one.id]: one.code, [other.id]: other.code }, after: { [one.id]: other.code, [other.id]: one.code, results: moved },

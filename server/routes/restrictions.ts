@@ -12,8 +12,8 @@ export function restrictionRoutes(): Router {
   const router = Router({ mergeParams: true });
   router.get('/restrictions', allow('restrictions.see', 'read'), async (request, response) => {
     const { block } = filter.parse(request.query);
-    const items = await listRestrictions(accessOf(request), { ...(block ? { blockId: block } : {}), now: new Date() });
-    response.json({ items, total: items.length });
+    const { items, lifters } = await listRestrictions(accessOf(request), { ...(block ? { blockId: block } : {}), now: new Date() });
+    response.json({ items, total: items.length, lifters });
   });
   router.post('/restrictions', allow('restrictions.set'), async (request, response) => {
     response.status(201).json(await setRestriction(accessOf(request), newRestriction.parse(request.body)));

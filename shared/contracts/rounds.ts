@@ -118,6 +118,8 @@ export const fieldRound = z.object({
   doneTargetIds: z.array(id),
   safety: z.object({ emergencyNumber: z.string(), meetingPoint: z.string() }),
   restrictions: z.array(restrictionView),
+  /** Who may lift a restriction before its time. */
+  lifters: z.array(z.string()).default([]),
   /** When the server looked for restrictions. */
   checkedAt: z.string(),
   acknowledgedAt: z.string().nullable(),

@@ -5,7 +5,7 @@ const block = { blockId: id, blockName: z.string() };
 
 /** One thing that waits for the person, as facts; the browser makes the sentence and the link. */
 export const todayLine = z.discriminatedUnion('kind', [
-  z.object({ kind: z.literal('restriction'), id, ...block, product: z.string(), startsAt: isoTime, endsAt: isoTime, state: z.enum(['comes', 'inForce', 'endsSoon']) }),
+  z.object({ kind: z.literal('restriction'), id, ...block, product: z.string(), startsAt: isoTime, endsAt: isoTime, state: z.enum(['comes', 'inForce', 'endsSoon', 'lifted']), /** Of one lifted before its time, in the last day. */ lifted: z.object({ at: isoTime, by: z.string(), reason: z.string() }).nullable() }),
   z.object({ kind: z.literal('notice'), id, number: z.int(), lotName: z.string(), pickOn: isoDate.nullable() }),
   z.object({ kind: z.literal('round'), id, planId: id, ...block, onDate: isoDate, done: z.int(), vines: z.int(), state: z.enum(['late', 'today', 'open', 'ahead']), isMine: z.boolean(), seen: z.boolean() }),
   z.object({ kind: z.literal('conflict'), total: z.int() }),

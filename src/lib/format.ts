@@ -55,7 +55,7 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
       new Intl.DateTimeFormat(region, { ...dateParts.weekday, hour: '2-digit', minute: '2-digit', hourCycle: 'h23', ...zone(timeZone) }).format(new Date(instant)),
     duration: (minutes: number) => durationText(minutes, number),
     bytes: (bytes: number) => bytesText(bytes, number),
-    list: (items: readonly string[]) => new Intl.ListFormat(region, { type: 'conjunction' }).format(items),
+    list: (items: readonly string[], joined: 'and' | 'or' = 'and') => new Intl.ListFormat(region, { type: joined === 'and' ? 'conjunction' : 'disjunction' }).format(items),
   };
 }
 

@@ -246,6 +246,9 @@ describe('a round', () => {
     expect(refused.status).toBe(409);
     expect(refused.body).toMatchObject({ code: 'entryRestricted', until: '2026-07-10T18:00:00.000Z' });
     expect(refused.body.detail).toMatch(/Sulphur.*label.*law/s);
+    const { lifters } = await fieldOf(agent, roundId);
+    expect(lifters.length).toBeGreaterThan(0);
+    for (const name of lifters) expect(refused.body.detail).toContain(name);
     expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open', startedAt: '2026-07-11T07:00:00Z' })).status).toBe(204);
   });
 

@@ -130,6 +130,10 @@ describe('entry restrictions', () => {
     const mails = await MailMessage.query().where({ kind: 'restriction' });
     expect(mails.length).toBeGreaterThanOrEqual(3);
     expect(mails[0]!.bodyText).toMatch(/48 h/);
+    // Whom to ask for lifting it is said by name, in the mail and in the list.
+    const { lifters } = (await agronomist.get(`${base()}/restrictions`)).body as { lifters: string[] };
+    expect(lifters.length).toBeGreaterThanOrEqual(2);
+    for (const name of lifters) expect(mails[0]!.bodyText).toContain(name);
     const { items } = (await manager.get(`${base()}/restrictions?block=${blockId}`)).body as { items: { inForce: boolean }[] };
     expect(items[0]!.inForce).toBe(true);
     expect((await manager.post(`${base()}/restrictions/${made.body.id}/lift`, { reason: '' })).status).toBe(422);

@@ -91,6 +91,13 @@ describe('what waits today', () => {
     expect(await state(5, 60)).toBe('comes');
     expect(await state(40, 60)).toBeNull();
     expect(await state(-60, -5)).toBeNull();
+    await state(-5, 60);
+    const lift = (hoursAgo: number) => app.knex('entry_restrictions').where({ id: ids.get('entry_restrictions')! }).update({ liftedAt: new Date(Date.now() - hoursAgo * 3_600_000), liftedBy: people.get('manager'), liftedReason: 'Typed for the wrong block' });
+    await lift(2);
+    expect((await todayOf('crew')).lines.find(({ kind }) => kind === 'restriction')).toMatchObject({ state: 'lifted', lifted: { reason: 'Typed for the wrong block' } });
+    await lift(25);
+    expect(kinds(await todayOf('crew'))).not.toContain('restriction');
+    await app.knex('entry_restrictions').where({ id: ids.get('entry_restrictions')! }).update({ liftedAt: null, liftedBy: null, liftedReason: null });
   });
 
   it('starts a new estate with nothing waiting and nothing set up', async () => {

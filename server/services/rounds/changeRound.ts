@@ -4,6 +4,7 @@ import type { roundChange } from '../../../shared/contracts/rounds.ts';
 import { restrictionsAt } from '../../../shared/field/entry.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { Clash, Missing } from '../../errors.ts';
+import { peopleWhoMay } from '../../ground/peopleWhoMay.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
@@ -52,5 +53,6 @@ async function refuseRestricted(trx: Transaction, round: Round, { targetIds, at 
   if (!longest) return;
   const [block, estate] = [await Block.query(trx).findOne({ estateId, id: blockId }).throwIfNotFound(), await Estate.query(trx).findById(estateId).throwIfNotFound()];
   const until = new Intl.DateTimeFormat('en-GB', { timeZone: estate.timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(longest.endsAt));
-  throw new Clash('entryRestricted', `Do not enter ${block.name} until ${until} (${longest.product}). The product label, posted signs, the responsible person and local law come first.`, { until: longest.endsAt });
+  const lifters = new Intl.ListFormat('en', { type: 'disjunction' }).format((await peopleWhoMay(trx, estateId, 'restrictions.lift')).map(({ name }) => name));
+  throw new Clash('entryRestricted', `Do not enter ${block.name} until ${until} (${longest.product}). Only ${lifters} may lift this early. The product label, posted signs, the responsible person and local law come first.`, { until: longest.endsAt });
 }

@@ -7,6 +7,7 @@ import { headOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { peopleWhoMay } from '../../ground/peopleWhoMay.ts';
 import { restrictionViews } from '../../ground/restrictionViews.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -58,6 +59,7 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     doneTargetIds: [...new Set(readings.flatMap(({ targetId }) => (targetId === null ? [] : [targetId])))],
     safety: safetyOf(estate),
     restrictions: await restrictionViews(estateId, await EntryRestriction.query().where({ estateId, blockId: block.id }).where('endsAt', '>', now).orderBy('endsAt', 'desc'), now),
+    lifters: (await peopleWhoMay(undefined, estateId, 'restrictions.lift')).map(({ name }) => name),
     checkedAt: now.toISOString(),
     acknowledgedAt: me?.acknowledgedAt?.toISOString() ?? null,
   };

@@ -8,21 +8,23 @@ import type { Moment } from './today.ts';
 
 const soonMs = 24 * 3_600_000;
 
-/** Restrictions in force and those that begin within a day; one about to end says so. Lifted ones are over. */
+/** Restrictions in force and those that begin within a day; one about to end says so, and one lifted early in the last day says who did. */
 export async function restrictionLines({ estateId }: Access, { now }: Moment): Promise<TodayOf<'restriction'>[]> {
-  const soon = new Date(now.getTime() + soonMs);
+  const [soon, yesterday] = [new Date(now.getTime() + soonMs), new Date(now.getTime() - soonMs)];
   const rows = (await EntryRestriction.query()
     .alias('e')
     .joinRaw('join blocks b on b.estate_id = e.estate_id and b.id = e.block_id and b.retired_at is null')
+    .leftJoin('people as p', 'p.id', 'e.liftedBy')
     .where('e.estateId', estateId)
-    .whereNull('e.liftedAt')
+    .where((query) => query.whereNull('e.liftedAt').orWhere('e.liftedAt', '>', yesterday))
     .where('e.endsAt', '>', now)
     .where('e.startsAt', '<=', soon)
     .orderBy('e.endsAt')
-    .select('e.id', 'e.blockId', 'e.product', 'e.startsAt', 'e.endsAt', 'b.name as blockName')) as (EntryRestriction & { blockName: string })[];
-  return rows.map(({ id, blockId, blockName, product, startsAt, endsAt }) => ({
+    .select('e.id', 'e.blockId', 'e.product', 'e.startsAt', 'e.endsAt', 'e.liftedAt', 'e.liftedReason', 'p.name as liftedByName', 'b.name as blockName')) as (EntryRestriction & { blockName: string; liftedByName: string | null })[];
+  return rows.map(({ id, blockId, blockName, product, startsAt, endsAt, liftedAt, liftedByName, liftedReason }) => ({
     kind: 'restriction', id, blockId, blockName, product, startsAt: startsAt.toISOString(), endsAt: endsAt.toISOString(),
-    state: startsAt > now ? 'comes' : endsAt <= soon ? 'endsSoon' : 'inForce',
+    state: liftedAt ? 'lifted' : startsAt > now ? 'comes' : endsAt <= soon ? 'endsSoon' : 'inForce',
+    lifted: liftedAt ? { at: liftedAt.toISOString(), by: liftedByName ?? '–', reason: liftedReason ?? '' } : null,
   }));
 }
 

@@ -25,12 +25,19 @@ type Words<Kind extends TodayLine['kind']> = (line: TodayOf<Kind>, reader: Reade
 
 const plain = (text: string) => ({ kind: 'plain', text }) as const;
 
+function restrictionTime({ state, startsAt, endsAt, lifted }: TodayOf<'restriction'>, t: Reader['t'], format: Format): TodaySentence['when'] {
+  if (lifted !== null) return plain(t('today.liftedAt', { time: format.dateTime(lifted.at) }));
+  if (state === 'comes') return { kind: 'asks', text: t('today.fromTime', { time: format.dateTime(startsAt) }) };
+  return state === 'endsSoon' ? { kind: 'asks', text: t('today.ends', { time: format.dateTime(endsAt) }) } : { kind: 'stop', text: t('today.until', { time: format.dateTime(endsAt) }) };
+}
+
 /** One row a kind of thing. */
 const words: { [Kind in TodayLine['kind']]: Words<Kind> } = {
   restriction: (line, { t, format, placeOf }) => ({
-    title: t(line.state === 'comes' ? 'today.restrictionComes' : 'today.restriction', { block: line.blockName }),
-    detail: t('today.restrictionDetail', { product: line.product }),
-    when: line.state === 'comes' ? { kind: 'asks', text: t('today.fromTime', { time: format.dateTime(line.startsAt) }) } : { kind: line.state === 'endsSoon' ? 'asks' : 'stop', text: t(line.state === 'endsSoon' ? 'today.ends' : 'today.until', { time: format.dateTime(line.endsAt) }) },
+    ...(line.lifted === null
+      ? { title: t(line.state === 'comes' ? 'today.restrictionComes' : 'today.restriction', { block: line.blockName }), detail: t('today.restrictionDetail', { product: line.product }) }
+      : { title: t('today.restrictionLifted', { block: line.blockName }), detail: t('today.restrictionLiftedDetail', { product: line.product, name: line.lifted.by, reason: line.lifted.reason }) }),
+    when: restrictionTime(line, t, format),
     to: placeOf('restrictions'),
   }),
   notice: (line, { t, format, placeOf }) => ({

@@ -16,7 +16,7 @@ import type { DemoEstate } from './seedEstate.ts';
 /** The layers of the demo, through the same door as anybody's files: received, asked, answered and placed. */
 export async function seedLayers(made: DemoEstate, ground: Ground, days: DemoDays): Promise<void> {
   const access: Access = { estateId: made.estateId, personId: made.personOf('agronomist'), roles: ['agronomist'] };
-  const vigour = (capturedOn: string, layerName: string): ImportAnswers => ({ purpose: 'vigour', value: 'ndvi', redBand: 1, nirBand: 2, capturedOn, alleys: 'mown', layerName });
+  const vigour = (capturedOn: string, layerName: string): ImportAnswers => ({ purpose: 'vigour', value: 'ndvi', redBand: 1, nirBand: 2, capturedOn, alleys: 'mown', growthStage: 'veraison', canopy: 'all', layerName });
   const taken = days.day(-40);
   const before = days.day(-404);
   await importOne(access, vigourImage(ground, { seed: 41, year: Number(before.slice(0, 4)), gain: 0.93 }), vigour(before, `Vigour ${before.slice(0, 4)}`));

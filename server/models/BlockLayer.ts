@@ -20,6 +20,8 @@ export class BlockLayer extends EstateModel {
   declare coverage: number;
   declare statistics: LayerStatistics;
   declare findings: LayerFinding[];
+  /** Places of the findings as a layer's cells are stored, a bit each; null where none has one. */
+  declare marks: Buffer | null;
   declare override: LayerOverride | null;
   declare survey: (LayerSurvey & { aside: AsideReading[] }) | null;
   declare createdAt: Date;

@@ -9,7 +9,7 @@ import type { AsideReading } from '../../shared/contracts/layers.ts';
 import type { LonLat } from '../../shared/geo/coordinates.ts';
 import { fromUtm, toUtm } from '../../shared/geo/utm.ts';
 import type { PlacedCells, PlaceInput, PlacedLayer } from './placed.ts';
-import { placeOnBlocks } from './placeRaster.ts';
+import { factsFromAnswers, placeOnBlocks } from './placeRaster.ts';
 
 export interface PointReadings {
   lonLat: readonly LonLat[];
@@ -38,13 +38,10 @@ export function placePoints({ source, blocks }: PlaceInput, points: PointReading
     return { grid, near, cleaned, surface: surveySurface(grid, cleaned.kept), taken };
   });
   const placed = placeOnBlocks({ blocks, grids, cells: surveys.map(({ surface }) => surface.cells) }, (block, at) => ({
+    ...factsFromAnswers(answers, block),
     type,
     index: answers.holds === undefined || answers.holds === 'other' ? null : answers.holds,
-    measuredOn: answers.capturedOn ?? null,
     pixelSizeM: null,
-    rowSpacingM: block.rowSpacingM,
-    alleys: null,
-    steelTrellis: answers.steelTrellis ?? null,
     pointCount: insideCount(grids[at]!, surveys[at]!.cleaned.kept),
   }));
   const withSurveys = placed.map((block): PlacedCells => ({ ...block, survey: surveyRecord(surveys[blocks.findIndex((each) => each.id === block.blockId)]!) }));

@@ -1,3 +1,4 @@
+import type { CanopyFigures } from '../../shared/analysis/canopyCells.ts';
 import { defineGrid, type Cells, type Grid } from '../../shared/analysis/grid.ts';
 import type { LayerFacts } from '../../shared/analysis/layerFindings.ts';
 import { terrainOf } from '../../shared/analysis/terrain.ts';
@@ -5,13 +6,16 @@ import { layerType } from '../../shared/catalog/layerTypes.ts';
 import { unitFactor } from '../../shared/catalog/sourceUnits.ts';
 import type { ImportAnswers } from '../../shared/contracts/imports.ts';
 import type { LayerClass } from '../../shared/contracts/layers.ts';
+import { toUtm } from '../../shared/geo/utm.ts';
 import { indexOf } from '../../shared/importing/questions.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
-import { readRasterOntoGrids, type RasterQuantity } from '../importers/raster/readRasterOntoGrids.ts';
+import { readCanopyOntoGrids, type CanopyGrid } from '../importers/raster/readCanopyOntoGrids.ts';
+import { readRasterOntoGrids, type GridReading, type RasterQuantity } from '../importers/raster/readRasterOntoGrids.ts';
 import type { RasterUnderstood } from '../importers/understood.ts';
 import { judgeCells } from './judgeCells.ts';
 import { reliefGrid, reliefOf } from './relief.ts';
 import type { PlaceInput, PlacedCells, PlacedLayer, TargetBlock } from './placed.ts';
+import { mixedScale } from './scaleAlarm.ts';
 import { readOptionsOf, summaryOf } from './sourceFile.ts';
 
 type Progress = (stage: string, progress: number) => void;
@@ -23,17 +27,15 @@ export async function placeRaster({ source, blocks, withRelief = false }: PlaceI
   const { answers } = source;
   const grids = blocks.map((block) => defineGrid(block.boundary, block.cellSizeM));
   const land = withRelief && answers.purpose === 'elevation' ? reliefGrid(grids) : null;
-  const readings = await readRasterOntoGrids(source.path, readOptionsOf(source), {
-    quantity: quantityOf(understood, answers),
-    grids: land === null ? grids : [...grids, land],
-    ...(answers.noData === undefined ? {} : { noData: answers.noData }),
-    onProgress: (done) => report('reading', 0.9 * done),
-  });
+  const common = { quantity: quantityOf(understood, answers), ...(answers.noData === undefined ? {} : { noData: answers.noData }), onProgress: (done: number) => report('reading', 0.9 * done) };
+  const readings: readonly (GridReading & { canopy?: CanopyFigures })[] = isCanopyOnly(answers)
+    ? await readCanopyOntoGrids(source.path, readOptionsOf(source), { ...common, holds: answers.holds === undefined || answers.holds === 'other' ? null : answers.holds, grids: canopyGrids(blocks, grids, answers) })
+    : await readRasterOntoGrids(source.path, readOptionsOf(source), { ...common, grids: land === null ? grids : [...grids, land] });
   report('judging', 0.9);
   const type = rasterType(answers);
   const factor = unitFactor(answers.purpose!, answers.unit);
   const cells = readings.map((reading) => (factor === 1 ? reading.cells : reading.cells.map((value) => value * factor)));
-  const placing: Placing = { understood, answers, blocks, grids };
+  const placing: Placing = { understood, answers, blocks, grids, readings };
   const main = layerOf(placing, type, cells);
   if (type !== 'elevation') return [main];
   return [land === null ? main : { ...main, relief: reliefOf(land, cells.at(-1)!) }, ...terrainLayers(placing, cells.slice(0, grids.length))];
@@ -44,6 +46,23 @@ interface Placing {
   answers: ImportAnswers;
   blocks: readonly TargetBlock[];
   grids: readonly Grid[];
+  readings: readonly (GridReading & { canopy?: CanopyFigures })[];
+}
+
+function isCanopyOnly({ purpose, canopy }: ImportAnswers): boolean {
+  return purpose === 'vigour' && (canopy === 'threshold' || canopy === 'rows');
+}
+
+/** Blocks as canopy is read on them. Between rows a cell takes the canopy of the rows beside it. */
+function canopyGrids(blocks: readonly TargetBlock[], grids: readonly Grid[], { canopy }: ImportAnswers): CanopyGrid[] {
+  if (canopy === 'rows' && blocks.every(({ rows }) => rows.length === 0)) {
+    throw new ImportProblem({ code: 'bad-request', fact: 'None of the blocks it covers has rows yet.', remedy: 'Lay the rows of the block first, or tell canopy by its index.' });
+  }
+  return grids.map((grid, at) => ({
+    grid,
+    reachM: blocks[at]!.rowSpacingM,
+    rowsXY: canopy === 'rows' ? blocks[at]!.rows.map((line) => line.map((position) => toUtm(position, grid.epsg))) : null,
+  }));
 }
 
 function rasterType(answers: ImportAnswers): string {
@@ -60,17 +79,18 @@ function quantityOf(understood: RasterUnderstood, answers: ImportAnswers): Raste
   return { kind: 'band', band: answers.band ?? understood.bands[0]!.index, method };
 }
 
-function layerOf({ understood, answers, blocks, grids }: Placing, type: string, cells: readonly Cells[]): PlacedLayer {
+function layerOf({ understood, answers, blocks, grids, readings }: Placing, type: string, cells: readonly Cells[]): PlacedLayer {
   const index = indexOf({ file: summaryOf(understood), answers }) ?? (answers.holds === undefined || answers.holds === 'other' ? null : answers.holds);
-  const placed = placeOnBlocks({ blocks, grids, cells }, (block): LayerFacts => ({
+  const scaleTimes = mixedScale(understood.boundsLonLat!, blocks.map(({ boundary }) => boundary), grids[0]!.epsg);
+  const placed = placeOnBlocks({ blocks, grids, cells }, (block, at): LayerFacts => ({
+    ...factsFromAnswers(answers, block),
     type,
     index,
-    measuredOn: answers.capturedOn ?? null,
     pixelSizeM: understood.pixelSizeM,
-    rowSpacingM: block.rowSpacingM,
-    alleys: answers.alleys ?? null,
-    steelTrellis: answers.steelTrellis ?? null,
     pointCount: null,
+    bandMeans: readings[at]!.bandMeans,
+    canopy: readings[at]!.canopy ?? null,
+    scaleTimes,
   }));
   const unit = type === 'soilNumber' ? (answers.unit ?? '') : layerType(type).unit;
   return { type, derivedFrom: null, unit, value: index ?? (understood.bands.length > 1 ? `band ${answers.band}` : null), classes: type === 'soilClass' ? classesOf(placed) : null, pixelSizeM: understood.pixelSizeM, reference: understood.crsName, blocks: placed };
@@ -81,6 +101,11 @@ function terrainLayers(placing: Placing, elevations: readonly Cells[]): PlacedLa
   const terrains = elevations.map((elevation, at) => terrainOf({ elevation, cols: placing.grids[at]!.cols, cellSizeM: placing.grids[at]!.cellSizeM }));
   const parts = [['slope', terrains.map((terrain) => terrain.slopeDeg)], ['northness', terrains.map((terrain) => terrain.northness)], ['eastness', terrains.map((terrain) => terrain.eastness)]] as const;
   return parts.map(([type, cells]) => ({ ...layerOf(placing, type, cells), derivedFrom: 'elevation', value: null }));
+}
+
+/** What people told about a file and a block, as the findings want it. */
+export function factsFromAnswers(answers: ImportAnswers, block: TargetBlock): Pick<LayerFacts, 'measuredOn' | 'rowSpacingM' | 'rowBearingDeg' | 'alleys' | 'steelTrellis' | 'growthStage'> {
+  return { measuredOn: answers.capturedOn ?? null, rowSpacingM: block.rowSpacingM, rowBearingDeg: block.rowBearingDeg, alleys: answers.alleys ?? null, steelTrellis: answers.steelTrellis ?? null, growthStage: answers.growthStage ?? null };
 }
 
 /** Judged cells of each block that has any. */

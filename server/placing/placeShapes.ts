@@ -10,7 +10,7 @@ import { ImportProblem } from '../importers/importProblem.ts';
 import type { VectorUnderstood } from '../importers/understood.ts';
 import type { PlaceInput, PlacedLayer } from './placed.ts';
 import { placePoints } from './placePoints.ts';
-import { placeOnBlocks } from './placeRaster.ts';
+import { factsFromAnswers, placeOnBlocks } from './placeRaster.ts';
 
 const mostClasses = 60;
 
@@ -74,13 +74,10 @@ function layer({ source, blocks }: PlaceInput, made: Context & { type: string; c
   const { answers } = source;
   const grids = blocks.map((block) => defineGrid(block.boundary, block.cellSizeM));
   const placed = placeOnBlocks({ blocks, grids, cells: grids.map(made.cellsOf) }, (block) => ({
+    ...factsFromAnswers(answers, block),
     type: made.type,
     index: answers.holds === undefined || answers.holds === 'other' ? null : answers.holds,
-    measuredOn: answers.capturedOn ?? null,
     pixelSizeM: null,
-    rowSpacingM: block.rowSpacingM,
-    alleys: null,
-    steelTrellis: answers.steelTrellis ?? null,
     pointCount: null,
   }));
   const unit = made.type === 'soilNumber' ? (answers.unit ?? '') : layerType(made.type).unit;

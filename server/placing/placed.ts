@@ -1,6 +1,5 @@
-import type { LayerFinding } from '../../shared/analysis/layerFindings.ts';
 import type { ImportAnswers } from '../../shared/contracts/imports.ts';
-import type { AsideReading, LayerClass, LayerStatistics, LayerSurvey } from '../../shared/contracts/layers.ts';
+import type { AsideReading, LayerClass, LayerFinding, LayerStatistics, LayerSurvey } from '../../shared/contracts/layers.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
 /** Texts of small files that came beside the file. */
@@ -23,6 +22,9 @@ export interface TargetBlock {
   boundary: MultiPolygonLonLat;
   cellSizeM: number;
   rowSpacingM: number;
+  rowBearingDeg: number;
+  /** Its rows as lines; only where the answers ask for values along rows. */
+  rows: LonLat[][];
 }
 
 export interface PlaceInput {
@@ -40,6 +42,8 @@ export interface PlacedCells {
   coverage: number;
   statistics: LayerStatistics;
   findings: LayerFinding[];
+  /** Places of the findings, a bit each; null where none has a place of its own. */
+  marks: Uint8Array | null;
   /** Of points: how the surface was made, and what was set aside where. */
   survey?: LayerSurvey & { aside: AsideReading[] };
 }

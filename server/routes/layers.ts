@@ -4,7 +4,7 @@ import { id } from '../../shared/contracts/common.ts';
 import { cleaningChange, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { layersBeside } from '../services/layers/beside.ts';
-import { readCells, readRelief } from '../services/layers/cells.ts';
+import { readCells, readMarks, readRelief } from '../services/layers/cells.ts';
 import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
 import { changeCleaning, readAside } from '../services/layers/survey.ts';
 import { listLayers } from '../services/layers/view.ts';
@@ -27,6 +27,12 @@ export function layerRoutes(): Router {
   router.get('/layers/:layerId/cells', allow('estate.see', 'read'), async (request, response) => {
     const { bytes, grid } = await readCells(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
     response.set({ 'content-type': 'application/octet-stream', 'x-grid': JSON.stringify(grid), 'cache-control': 'private, no-cache' }).send(bytes);
+  });
+
+  router.get('/layers/:layerId/marks', allow('estate.see', 'read'), async (request, response) => {
+    const bytes = await readMarks(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    if (bytes === null) response.status(204).end();
+    else response.set({ 'content-type': 'application/octet-stream', 'cache-control': 'private, no-cache' }).send(bytes);
   });
 
   router.patch('/layers/:layerId', allow('layers.import'), async (request, response) => {

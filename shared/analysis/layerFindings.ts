@@ -4,13 +4,21 @@
  */
 import { layerType } from '../catalog/layerTypes.ts';
 import type { Cells, Grid } from './grid.ts';
+import type { CanopyFigures } from './canopyCells.ts';
 import type { LayerStats } from './layerStats.ts';
+import { sensorStripes } from './layerStripes.ts';
+import { sceneMarks, type BandMeans } from './sceneFitness.ts';
 
 /** red keeps a layer out of zoning, amber goes with it wherever it is shown, note is for the record. */
 export interface LayerFinding {
   readonly code: string;
   readonly severity: 'red' | 'amber' | 'note';
   readonly params: Readonly<Record<string, string | number>>;
+}
+
+/** A finding with its place: 1 for the cells it is about; without cells it is about the whole block. */
+export interface PlacedFinding extends LayerFinding {
+  readonly cells?: Uint8Array;
 }
 
 export interface LayerFacts {
@@ -22,6 +30,15 @@ export interface LayerFacts {
   readonly rowSpacingM: number;
   readonly alleys: string | null;
   readonly steelTrellis: string | null;
+  readonly rowBearingDeg?: number;
+  /** Growth stage of the vines on the day of a vigour picture. */
+  readonly growthStage?: string | null;
+  /** Means of the bands that an index was made of here; null where the file held the index. */
+  readonly bandMeans?: BandMeans | null;
+  /** Values of canopy alone: how it was told from the alleys; null where all pixels count. */
+  readonly canopy?: CanopyFigures | null;
+  /** Length of the file's outline against that of a block where it is that of a mixed-up unit of length. */
+  readonly scaleTimes?: number | null;
   /** Points inside the block that the cells come from; null for pictures and shapes. */
   readonly pointCount: number | null;
 }
@@ -45,17 +62,34 @@ const ranges: Record<string, readonly [number, number]> = { ndvi: [-1, 1], gndvi
 /** Layers whose pattern changes with the season: their day matters. */
 const dated = new Set(['vigour', 'conductivity', 'yield']);
 
-type Check = (judged: Judged) => LayerFinding | null;
+/** Otsu's measure below this: one hump of pixels, not canopy and alleys (judgement). */
+const clearlyApart = 0.6;
+/** Strips along rows whose index lies less than this above the alleys miss the canopy (judgement). */
+const stripsAbove = 0.5;
+/** Cloud or shadow over more of the block than this leaves too little ground to zone on. */
+const mostHidden = 0.1;
+/** Rows and cells of nearly one width beat in stripes narrower than this; a camera's swath is wider (judgement). */
+const widestBeatM = 12;
+/** Bearings this close to the rows' count as along them. */
+const alongRowsDeg = 7.5;
+
+type Check = (judged: Judged) => PlacedFinding | readonly PlacedFinding[] | null;
 
 const checks: readonly Check[] = [
-  ({ stats }) => (stats.coverage >= enoughCoverage ? null : { code: 'partial', severity: 'red', params: { percent: Math.floor(stats.coverage * 100), needed: enoughCoverage * 100 } }),
+  ({ facts }) => (typeof facts.scaleTimes === 'number' ? { code: 'scale', severity: 'red', params: { times: facts.scaleTimes } } : null),
+  (judged) => (judged.stats.coverage >= enoughCoverage ? null : { code: 'partial', severity: 'red', params: { percent: Math.floor(judged.stats.coverage * 100), needed: enoughCoverage * 100 }, cells: emptyCells(judged) }),
   (judged) => impossible(judged),
   ({ stats }) => (stats.n > 1 && isConstant(stats) ? { code: 'constant', severity: 'red', params: { value: stats.min! } } : null),
-  ({ stats }) => (stats.coverage >= enoughCoverage && stats.coverage < fullCoverage ? { code: 'gaps', severity: 'amber', params: { percent: Math.floor(stats.coverage * 1000) / 10 } } : null),
+  (judged) => hidden(judged),
+  (judged) => (judged.stats.coverage >= enoughCoverage && judged.stats.coverage < fullCoverage ? { code: 'gaps', severity: 'amber', params: { percent: Math.floor(judged.stats.coverage * 1000) / 10 }, cells: emptyCells(judged) } : null),
   (judged) => saturated(judged),
+  (judged) => striped(judged),
   ({ facts }) => (dated.has(facts.type) && facts.measuredOn === null ? { code: 'noDate', severity: 'amber', params: {} } : null),
+  ({ facts }) => growth(facts),
   ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.pixelSizeM > facts.rowSpacingM / 4 ? { code: 'alleyMixed', severity: 'amber', params: { pixelM: facts.pixelSizeM, spacingM: facts.rowSpacingM } } : null),
   ({ facts }) => (facts.type === 'vigour' && facts.alleys === 'green' ? { code: 'greenAlleys', severity: 'amber', params: {} } : null),
+  ({ facts }) => canopy(facts),
+  ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.bandMeans === null ? { code: 'cloudUnseen', severity: 'note', params: {} } : null),
   ({ facts }) => (facts.type === 'conductivity' && facts.steelTrellis === 'yes' ? { code: 'steelTrellis', severity: 'amber', params: {} } : null),
   ({ facts }) => (facts.type === 'conductivity' && facts.steelTrellis === 'unknown' ? { code: 'trellisUnknown', severity: 'note', params: {} } : null),
   ({ facts }) => (facts.pointCount !== null && facts.pointCount < fewPoints ? { code: 'fewPoints', severity: 'amber', params: { points: facts.pointCount, wanted: fewPoints } } : null),
@@ -64,9 +98,52 @@ const checks: readonly Check[] = [
 
 const gravity = { red: 0, amber: 1, note: 2 } as const;
 
-export function layerFindings(judged: Judged): LayerFinding[] {
-  const found = checks.map((check) => check(judged)).filter((finding): finding is LayerFinding => finding !== null);
+export function layerFindings(judged: Judged): PlacedFinding[] {
+  const found = checks.flatMap((check) => check(judged) ?? []);
   return found.sort((a, b) => gravity[a.severity] - gravity[b.severity]);
+}
+
+/** Ground of the block without a value. */
+function emptyCells({ grid, cells }: Judged): Uint8Array {
+  return Uint8Array.from(cells, (value, cell) => (grid.share[cell]! > 0 && Number.isNaN(value) ? 1 : 0));
+}
+
+/** Cloud and shadow, where the bands tell. */
+function hidden({ grid, facts }: Judged): PlacedFinding[] {
+  const marks = facts.type === 'vigour' && facts.bandMeans ? sceneMarks(grid, facts.bandMeans) : null;
+  if (marks === null) return [];
+  const all = grid.share.reduce((sum, share) => sum + share, 0);
+  return (['cloud', 'shadow'] as const).flatMap((code) => {
+    const share = marks[code].reduce((sum, mark, cell) => sum + mark * grid.share[cell]!, 0) / all;
+    return share === 0 ? [] : { code, severity: share > mostHidden ? 'red' : 'amber', params: { percent: Math.max(1, Math.round(share * 100)) }, cells: marks[code] } as const;
+  });
+}
+
+/** Stripes of a sensor in a layer that votes; terrain and soil maps are structured by their making. */
+function striped({ grid, cells, stats, facts }: Judged): PlacedFinding | null {
+  if (!dated.has(facts.type) || stats.n < 2 || isConstant(stats)) return null;
+  const stripes = sensorStripes(grid, cells, { showsRows: layerType(facts.type).showsRows });
+  if (stripes === null) return null;
+  const off = Math.abs(((stripes.bearingDeg - (facts.rowBearingDeg ?? NaN) + 270) % 180) - 90);
+  const isBeat = layerType(facts.type).showsRows && stripes.widthM < widestBeatM;
+  return { code: isBeat ? 'rowBeat' : off <= alongRowsDeg ? 'stripesAlongRows' : 'stripes', severity: 'amber', params: { bearing: stripes.bearingDeg, widthM: Math.round(stripes.widthM), percent: Math.round(stripes.share * 100) }, cells: stripes.cells };
+}
+
+/** A vigour picture describes the season when the canopy is full, from fruit set to veraison and ripeness (common practice). */
+function growth({ type, growthStage }: LayerFacts): PlacedFinding | null {
+  if (type !== 'vigour' || growthStage === undefined || growthStage === null) return null;
+  if (growthStage === 'budburst' || growthStage === 'flowering') return { code: 'earlyCanopy', severity: 'amber', params: {} };
+  if (growthStage === 'leafFall') return { code: 'leafFall', severity: 'amber', params: {} };
+  return growthStage === 'unknown' ? { code: 'noStage', severity: 'note', params: {} } : null;
+}
+
+function canopy({ canopy: figures }: LayerFacts): PlacedFinding[] {
+  if (figures === undefined || figures === null) return [];
+  const percent = Math.round(figures.share * 100);
+  const isByRows = figures.threshold === null;
+  const isClear = figures.separability >= (isByRows ? stripsAbove : clearlyApart);
+  const told: PlacedFinding = { code: isByRows ? 'canopyByRows' : 'canopyOnly', severity: 'note', params: { percent, ...(isByRows ? {} : { value: figures.threshold! }) } };
+  return isClear ? [told] : [{ code: isByRows ? 'rowsMissCanopy' : 'canopyUnclear', severity: 'amber', params: {} }, told];
 }
 
 function isConstant(stats: LayerStats): boolean {
@@ -74,12 +151,12 @@ function isConstant(stats: LayerStats): boolean {
 }
 
 /** Cells outside what this layer can hold at all. */
-function impossible({ grid, cells, stats, facts }: Judged): LayerFinding | null {
+function impossible({ grid, cells, stats, facts }: Judged): PlacedFinding | null {
   const [min, max] = rangeOf(facts);
   if (stats.n === 0 || (stats.min! >= min && stats.max! <= max)) return null;
-  let count = 0;
-  for (let cell = 0; cell < cells.length; cell++) if (grid.inside[cell] === 1 && (cells[cell]! < min || cells[cell]! > max)) count += 1;
-  return { code: 'impossible', severity: 'red', params: { count, percent: Math.ceil((100 * count) / stats.n), value: stats.min! < min ? stats.min! : stats.max!, ...(Number.isFinite(min) ? { min } : {}), ...(Number.isFinite(max) ? { max } : {}) } };
+  const marked = Uint8Array.from(cells, (value, cell) => (grid.inside[cell] === 1 && (value < min || value > max) ? 1 : 0));
+  const count = countOf(marked);
+  return { code: 'impossible', severity: 'red', params: { count, percent: Math.ceil((100 * count) / stats.n), value: stats.min! < min ? stats.min! : stats.max!, ...(Number.isFinite(min) ? { min } : {}), ...(Number.isFinite(max) ? { max } : {}) }, cells: marked };
 }
 
 function rangeOf({ type, index }: LayerFacts): readonly [number, number] {
@@ -89,15 +166,15 @@ function rangeOf({ type, index }: LayerFacts): readonly [number, number] {
   return type === 'vigour' ? [-Infinity, Infinity] : [row.min ?? -Infinity, row.max ?? Infinity];
 }
 
-function saturated({ grid, cells, stats, facts }: Judged): LayerFinding | null {
+function saturated({ grid, cells, stats, facts }: Judged): PlacedFinding | null {
   // Only a picture is cut off at its end; flat ground has one slope for good reasons.
   if (facts.type !== 'vigour' || stats.n < 100 || isConstant(stats)) return null;
-  let [low, high] = [0, 0];
-  for (let cell = 0; cell < cells.length; cell++) {
-    if (grid.inside[cell] !== 1) continue;
-    if (cells[cell] === stats.min) low += 1;
-    if (cells[cell] === stats.max) high += 1;
-  }
-  const share = Math.max(low, high) / stats.n;
-  return share < saturatedShare ? null : { code: 'saturated', severity: 'amber', params: { percent: Math.round(share * 100), value: high >= low ? stats.max! : stats.min! } };
+  const at = (end: number) => Uint8Array.from(cells, (value, cell) => (grid.inside[cell] === 1 && value === end ? 1 : 0));
+  const [value, marked] = [stats.min!, stats.max!].map((end) => [end, at(end)] as const).reduce((most, each) => (countOf(each[1]) >= countOf(most[1]) ? each : most));
+  const share = countOf(marked) / stats.n;
+  return share < saturatedShare ? null : { code: 'saturated', severity: 'amber', params: { percent: Math.round(share * 100), value }, cells: marked };
+}
+
+function countOf(marks: Uint8Array): number {
+  return marks.reduce((sum, mark) => sum + mark, 0);
 }

@@ -12,6 +12,9 @@ export const importStates = ['reading', 'asks', 'ready', 'done', 'refused'] as c
 export const importPurposes = ['boundary', 'vigour', 'conductivity', 'yield', 'soil', 'elevation'] as const;
 export type ImportPurpose = (typeof importPurposes)[number];
 
+/** Growth stages that change what a vigour picture tells. */
+export const growthStages = ['budburst', 'flowering', 'fruitSet', 'veraison', 'ripe', 'leafFall', 'unknown'] as const;
+
 /** Answers by question. `null` is an answer too: not known, or none. A question that is left out stays open. */
 export const importAnswers = z.object({
   purpose: z.enum(importPurposes).optional(),
@@ -46,6 +49,10 @@ export const importAnswers = z.object({
   capturedOn: isoDate.nullable().optional(),
   /** State of the alleys when a vigour picture was taken. */
   alleys: z.enum(['bare', 'mown', 'green', 'unknown']).optional(),
+  /** Growth stage of the vines when a vigour picture was taken. */
+  growthStage: z.enum(growthStages).optional(),
+  /** Which pixels of a fine vigour picture count: all, those that the index tells to be canopy, or strips along the rows. */
+  canopy: z.enum(['all', 'threshold', 'rows']).optional(),
   /** Conductivity measured between rows with steel wires and posts. */
   steelTrellis: z.enum(['yes', 'no', 'unknown']).optional(),
   /** Field that names the outlines of a boundary file; null when none does. */

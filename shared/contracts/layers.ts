@@ -10,6 +10,8 @@ export const layerFinding = z.object({
   code: z.string(),
   severity: z.enum(findingSeverities),
   params: z.record(z.string(), z.union([z.string(), z.number()])),
+  /** Bit of its cells in the marks of the layer; without it the finding is about the whole block. */
+  mark: z.number().int().min(0).max(7).optional(),
 });
 export type LayerFinding = z.infer<typeof layerFinding>;
 

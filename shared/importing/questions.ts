@@ -1,6 +1,6 @@
 import { sourceUnits } from '../catalog/sourceUnits.ts';
 import { INDICES, type BandName, type IndexId, type VegetationIndex } from '../analysis/indices.ts';
-import type { FieldSummary, ImportAnswers, ImportPurpose, ImportQuestion, ImportQuestionCode, QuestionChoice, UnderstoodFile } from '../contracts/imports.ts';
+import { growthStages, type FieldSummary, type ImportAnswers, type ImportPurpose, type ImportQuestion, type ImportQuestionCode, type QuestionChoice, type UnderstoodFile } from '../contracts/imports.ts';
 import { dateInName, suggestBand, suggestIndex, suggestNameField, suggestPurpose, suggestValueField, unitInName } from './suggestions.ts';
 
 /**
@@ -40,9 +40,21 @@ const table: readonly Row[] = [
   { code: 'unit', applies: (asking) => sourceUnits[asking.answers.purpose ?? 'boundary'] !== undefined, choices: ({ answers }) => sourceUnits[answers.purpose ?? 'boundary']!.map((row) => row.unit), suggestion: suggestUnit },
   { code: 'capturedOn', kind: 'date', applies: (asking) => isFor(asking, ...measured), choices: () => [null], suggestion: ({ file, fileName }) => (file.kind === 'raster' ? file.captured : null) ?? dateInName(fileName) },
   { code: 'alleys', applies: (asking) => isFor(asking, 'vigour') && asking.file.kind === 'raster', choices: () => ['bare', 'mown', 'green', 'unknown'] },
+  { code: 'growthStage', applies: (asking) => isFor(asking, 'vigour') && asking.file.kind === 'raster', choices: () => growthStages },
+  { code: 'canopy', applies: (asking) => isFor(asking, 'vigour') && tellsCanopy(asking), choices: () => ['all', 'threshold', 'rows'] },
   { code: 'steelTrellis', applies: (asking) => isFor(asking, 'conductivity'), choices: () => ['yes', 'no', 'unknown'] },
   { code: 'nameField', applies: (asking) => isFor(asking, 'boundary') && fieldsOf(asking).length > 0, choices: (asking) => [...fieldsOf(asking).map((each) => labelled(each.name, each.name)), null], suggestion: (asking) => suggestNameField(fieldsOf(asking)) },
 ];
+
+/** Pixels up to this size can lie on a vine row alone: a quarter of common row spacings (judgement). */
+const finePixelM = 0.6;
+
+/** Fine pixels of a known index, which is high where the canopy is. */
+function tellsCanopy(asking: Asking): boolean {
+  const { file, answers } = asking;
+  if (file.kind !== 'raster' || file.pixelSizeM === null || file.pixelSizeM > finePixelM) return false;
+  return indexOf(asking) !== null || (answers.holds !== undefined && answers.holds !== 'other');
+}
 
 /** All questions about a file that follow from the answers so far, answered ones too. */
 export function importQuestions(asking: Asking): ImportQuestion[] {

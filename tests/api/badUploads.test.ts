@@ -241,7 +241,7 @@ describe('who may', () => {
   let ids: { importId: string; layerId: string; fileId: string };
   beforeAll(async () => {
     const { id } = (await upload('rights_ndvi.tif', picture())).body.items[0];
-    const answered = await agent.patch(`${base()}/imports/${id}`, { answers: { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'bare' } });
+    const answered = await agent.patch(`${base()}/imports/${id}`, { answers: { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'bare', growthStage: 'unknown', canopy: 'all' } });
     await jobEnd(agent, base(), answered.body.jobId);
     const line = (await agent.get(`${base()}/imports/${id}`)).body;
     ids = { importId: id, layerId: line.layers[0].id, fileId: line.fileId };

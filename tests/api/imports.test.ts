@@ -1,7 +1,7 @@
 import { createHash } from 'node:crypto';
 import { readFileSync } from 'node:fs';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import { decodeFloatCells, decodeLabels } from '../../shared/analysis/cellBytes.ts';
 import { Job } from '../../server/models/Job.ts';
 import { placeLayerJob } from '../../server/services/imports/placeLayer.ts';
 import { writeTiff } from '../core/importers/writeTiff.ts';
@@ -69,18 +69,20 @@ function picture(value: (x: number, y: number, band: number) => number, plan: Pa
   });
 }
 
+function asBytes(stream: NodeJS.ReadableStream, done: (error: Error | null, body: Buffer) => void): void {
+  const chunks: Buffer[] = [];
+  stream.on('data', (chunk: Buffer) => chunks.push(chunk));
+  stream.on('end', () => done(null, Buffer.concat(chunks)));
+}
+
 async function cellsOf(layerId: string, blockId: string) {
-  const response = await agent.get(`${base()}/layers/${layerId}/cells?block=${blockId}`).buffer(true).parse((stream, done) => {
-    const chunks: Buffer[] = [];
-    stream.on('data', (chunk: Buffer) => chunks.push(chunk));
-    stream.on('end', () => done(null, Buffer.concat(chunks)));
-  });
+  const response = await agent.get(`${base()}/layers/${layerId}/cells?block=${blockId}`).buffer(true).parse(asBytes as never);
   expect(response.status).toBe(200);
   return { cells: decodeFloatCells(response.body as Uint8Array), grid: JSON.parse(response.headers['x-grid'] as string) as { x0: number; y0: number; cols: number; rows: number; cellSizeM: number; cornersLonLat: [number, number][] } };
 }
 
 async function layersOn(blockId: string) {
-  return (await agent.get(`${base()}/blocks/${blockId}/layers`)).body.items as { id: string; name: string; type: string; unit: string; coverage: number; readiness: string; findings: { code: string; severity: string; params: Record<string, number> }[]; statistics: { mean: number; min: number; max: number; n: number; histogram: { counts: number[] } }; classes: { value: number; name: string }[] | null; measuredOn: string | null; derivedFrom: string | null; survey: Record<string, unknown> | null }[];
+  return (await agent.get(`${base()}/blocks/${blockId}/layers`)).body.items as { id: string; name: string; type: string; unit: string; coverage: number; readiness: string; findings: { code: string; severity: string; params: Record<string, number>; mark?: number }[]; statistics: { mean: number; min: number; max: number; n: number; histogram: { counts: number[] } }; classes: { value: number; name: string }[] | null; measuredOn: string | null; derivedFrom: string | null; survey: Record<string, unknown> | null }[];
 }
 
 describe('a vigour picture', () => {
@@ -94,8 +96,8 @@ describe('a vigour picture', () => {
     expect(line.understood.pixelSizeM).toBeCloseTo(0.5, 2);
     expect(line.questions).toMatchObject([{ code: 'purpose', suggestion: 'vigour', answered: false }]);
     const more = await answer(line.id, { purpose: 'vigour' });
-    expect(more.body.questions.map((question: { code: string; suggestion: unknown }) => [question.code, question.suggestion])).toEqual([['purpose', 'vigour'], ['holds', 'ndvi'], ['capturedOn', '2025-07-14'], ['alleys', null]]);
-    const ready = await answer(line.id, { holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'mown' });
+    expect(more.body.questions.map((question: { code: string; suggestion: unknown }) => [question.code, question.suggestion])).toEqual([['purpose', 'vigour'], ['holds', 'ndvi'], ['capturedOn', '2025-07-14'], ['alleys', null], ['growthStage', null]]);
+    const ready = await answer(line.id, { holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'mown', growthStage: 'veraison', canopy: 'all' });
     expect(ready.body.state).toBe('ready');
     expect(await jobEnd(agent, base(), ready.body.jobId)).toMatchObject({ state: 'done', result: { blocks: 2 } });
     const done = (await agent.get(`${base()}/imports/${line.id}`)).body;
@@ -114,7 +116,7 @@ describe('a vigour picture', () => {
       const [nw] = grid.cornersLonLat;
       expect(Math.abs(nw![0] - lonLatAt(offset, 60)[0])).toBeLessThan(3e-5);
       const [layer] = await layersOn(block.id);
-      expect(layer).toMatchObject({ type: 'vigour', measuredOn: '2025-07-14', coverage: 1, readiness: 'ready', findings: [] });
+      expect(layer).toMatchObject({ type: 'vigour', measuredOn: '2025-07-14', coverage: 1, readiness: 'ready', findings: [{ code: 'cloudUnseen' }] });
       expect(layer!.statistics.mean).toBeCloseTo(0.35 + offset / 1000, 3);
       expect(layer!.statistics.histogram.counts.reduce((sum, count) => sum + count, 0)).toBe(layer!.statistics.n);
     }
@@ -123,7 +125,7 @@ describe('a vigour picture', () => {
   it('makes an index of the bands that a person names', async () => {
     // 8-bit digital numbers: near infrared 45 over red 5 is an NDVI of 0.8, 38 over 9 one of 0.617021277.
     const bytes = picture((x, _y, band) => [11, 5, 45][band]! + (x > 130 ? [0, 4, -7][band]! : 0), { bands: 3, type: 'u8' });
-    const done = await bring({ name: 'flight.tif', bytes }, { purpose: 'vigour', value: 'ndvi', redBand: 2, nirBand: 3, capturedOn: null, alleys: 'unknown' });
+    const done = await bring({ name: 'flight.tif', bytes }, { purpose: 'vigour', value: 'ndvi', redBand: 2, nirBand: 3, capturedOn: null, alleys: 'unknown', growthStage: 'veraison', canopy: 'all' });
     expect(done.state).toBe('done');
     const [layerWest] = (await layersOn(west.id)).filter((layer) => layer.id === done.layers[0]!.id);
     const [layerEast] = (await layersOn(east.id)).filter((layer) => layer.id === done.layers[0]!.id);
@@ -177,12 +179,19 @@ describe('what is doubtful about a layer', () => {
   it('half a picture is named by its share and kept out of zoning', async () => {
     // No data in the eastern 40 of 100 m of the west block.
     const bytes = picture((x) => (x > 60 && x < 110 ? -9999 : 0.3 + x / 1000), { noData: '-9999' });
-    const done = await bring({ name: 'part_ndvi.tif', bytes }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare' });
+    const done = await bring({ name: 'part_ndvi.tif', bytes }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare', growthStage: 'veraison', canopy: 'all' });
     const layer = (await layersOn(west.id)).find((each) => each.id === done.layers[0]!.id)!;
     expect(layer.coverage).toBeCloseTo(0.6, 2);
     expect(layer.findings[0]).toMatchObject({ code: 'partial', severity: 'red' });
     expect(layer.findings[0]!.params.percent).toBeGreaterThanOrEqual(59);
     expect(layer.readiness).toBe('blocked');
+    // The place of the finding: the eastern 40 m, cell by cell.
+    const marks = decodeLabels((await agent.get(`${base()}/layers/${layer.id}/marks?block=${west.id}`).buffer(true).parse(asBytes as never)).body as Uint8Array);
+    const { cells } = await cellsOf(layer.id, west.id);
+    const bit = layer.findings[0]!.mark!;
+    const empty = [...cells].filter(Number.isNaN).length;
+    expect([...marks].every((mark, cell) => ((mark >> bit) & 1) === 0 || Number.isNaN(cells[cell]))).toBe(true);
+    expect([...marks].filter((mark) => ((mark >> bit) & 1) === 1).length).toBeGreaterThan(0.3 * empty);
     const path = `${base()}/layers/${layer.id}/override`;
     expect((await agent.post(path, { blockId: west.id, reason: 'no' })).status).toBe(422);
     expect((await agent.post(path, { blockId: west.id, reason: 'The rest is a farm track.' })).status).toBe(204);
@@ -191,20 +200,39 @@ describe('what is doubtful about a layer', () => {
     expect((await agent.post(path, { blockId: east.id, reason: 'Nothing to override here.' })).body.code).toBe('nothingRed');
   });
 
+  it('canopy alone leaves the alleys out, by the index or along the rows of the block', async () => {
+    // Rows of the block run north; alleys hold 0.1, every place within 0.5 m of x = 1.25 + 2.5 n holds 0.7.
+    const striped = picture((x) => (Math.abs((((x % 2.5) + 2.5) % 2.5) - 1.25) < 0.5 ? 0.7 : 0.1));
+    const told = { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'mown', growthStage: 'veraison' };
+    const meanOf = async (name: string, canopy: string) => {
+      const done = await bring({ name, bytes: striped }, { ...told, canopy });
+      return (await layersOn(west.id)).find((each) => each.id === done.layers[0]!.id)!;
+    };
+    const [all, canopy] = [await meanOf('all_ndvi.tif', 'all'), await meanOf('canopy_ndvi.tif', 'threshold')];
+    expect(all.statistics.mean).toBeGreaterThan(0.15);
+    expect(all.statistics.mean).toBeLessThan(0.4);
+    expect(canopy.statistics.mean).toBeCloseTo(0.7, 3);
+    expect(canopy.findings).toEqual(expect.arrayContaining([expect.objectContaining({ code: 'canopyOnly', severity: 'note' })]));
+    expect(canopy.coverage).toBeCloseTo(1, 2);
+    const rows = await meanOf('rows_ndvi.tif', 'rows');
+    expect(rows.findings.map((finding) => finding.code)).toContain('canopyByRows');
+    expect(rows.statistics.n).toBe(all.statistics.n);
+  });
+
   it('values that an index cannot have are called impossible', async () => {
-    const done = await bring({ name: 'bytes_ndvi.tif', bytes: picture((x) => Math.round(100 + x / 4), { type: 'u8' }) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare' });
+    const done = await bring({ name: 'bytes_ndvi.tif', bytes: picture((x) => Math.round(100 + x / 4), { type: 'u8' }) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare', growthStage: 'veraison', canopy: 'all' });
     const layer = (await layersOn(west.id)).find((each) => each.id === done.layers[0]!.id)!;
     expect(layer.findings[0]).toMatchObject({ code: 'impossible', severity: 'red', params: { percent: 100, min: -1, max: 1 } });
   });
 
   it('naming the day takes the doubt about it away', async () => {
-    const done = await bring({ name: 'undated_ndvi.tif', bytes: picture((x) => 0.3 + x / 1000) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'bare' });
+    const done = await bring({ name: 'undated_ndvi.tif', bytes: picture((x) => 0.3 + x / 1000) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'bare', growthStage: 'veraison', canopy: 'all' });
     const find = async () => (await layersOn(west.id)).find((each) => each.id === done.layers[0]!.id)!;
-    expect(await find()).toMatchObject({ readiness: 'doubt', findings: [{ code: 'noDate' }] });
+    expect(await find()).toMatchObject({ readiness: 'doubt', findings: [{ code: 'noDate' }, { code: 'cloudUnseen' }] });
     expect((await agent.patch(`${base()}/layers/${done.layers[0]!.id}`, { measuredOn: '2025-08-02', name: 'Late July flight' })).status).toBe(204);
-    expect(await find()).toMatchObject({ readiness: 'ready', findings: [], name: 'Late July flight', measuredOn: '2025-08-02' });
+    expect(await find()).toMatchObject({ readiness: 'ready', findings: [{ code: 'cloudUnseen' }], name: 'Late July flight', measuredOn: '2025-08-02' });
     await agent.patch(`${base()}/layers/${done.layers[0]!.id}`, { measuredOn: null });
-    expect((await find()).findings.map((finding) => finding.code)).toEqual(['noDate']);
+    expect((await find()).findings.map((finding) => finding.code)).toEqual(['noDate', 'cloudUnseen']);
   });
 });
 
@@ -404,7 +432,7 @@ describe('what was received', () => {
   });
 
   it('a dismissed line leaves the desk, what was made of it stays', async () => {
-    const done = await bring({ name: 'kept_ndvi.tif', bytes: picture((x) => 0.3 + x / 1000) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare' });
+    const done = await bring({ name: 'kept_ndvi.tif', bytes: picture((x) => 0.3 + x / 1000) }, { purpose: 'vigour', holds: 'ndvi', capturedOn: '2025-07-14', alleys: 'bare', growthStage: 'veraison', canopy: 'all' });
     expect((await agent.delete(`${base()}/imports/${done.id}`)).status).toBe(204);
     expect((await agent.get(`${base()}/imports`)).body.items.map((item: { id: string }) => item.id)).not.toContain(done.id);
     expect((await layersOn(west.id)).map((layer) => layer.id)).toContain(done.layers[0]!.id);
@@ -435,7 +463,7 @@ describe('real pictures', () => {
     const { outlines } = (await owner.patch(`${path}/imports/${shapes.id}`, { answers: { purpose: 'boundary', nameField: 'tract' } })).body;
     await owner.post(`${path}/imports/${shapes.id}/blocks`, { blocks: outlines.map(({ index, name }: { index: number; name: string }) => ({ outline: index, name, cellSizeM: 10, rowSpacingM: 12, vineSpacingM: 12 })) });
     const picture = await attach('l7_red_nir.tif');
-    await place(picture.id, { purpose: 'vigour', value: 'ndvi', redBand: 1, nirBand: 2, capturedOn: null, alleys: 'unknown' });
+    await place(picture.id, { purpose: 'vigour', value: 'ndvi', redBand: 1, nirBand: 2, capturedOn: null, alleys: 'unknown', growthStage: 'unknown' });
     await place((await attach('dem.tif')).id, { purpose: 'elevation', unit: 'm' });
     const blocks = (await owner.get(`${path}/blocks`)).body.items as { id: string; name: string; areaHa: number }[];
     expect(blocks.map((block) => block.name)).toEqual(Object.keys(tracts));

@@ -62,6 +62,7 @@ const doors: Door[] = [
   door('patch', `/layers/${nobody}`, 'layers.import'),
   door('post', `/layers/${nobody}/override`, 'layers.override'),
   door('delete', `/layers/${nobody}`, 'layers.import'),
+  door('get', `/layers/${nobody}/marks?block=${nobody}`, 'estate.see', 'read'),
   door('get', `/layers/${nobody}/aside?block=${nobody}`, 'estate.see', 'read'),
   door('get', `/layers/${nobody}/beside?block=${nobody}`, 'estate.see', 'read'),
   door('put', `/layers/${nobody}/cleaning`, 'layers.import'),

@@ -17,7 +17,7 @@ const open = (file: UnderstoodFile, answers: ImportAnswers = {}) => asked(file, 
 describe('questions about a picture', () => {
   it('begin with what it is for, and everything else depends on that', () => {
     expect(open(raster([null]))).toEqual(['purpose']);
-    expect(open(raster([null]), { purpose: 'vigour' })).toEqual(['holds', 'capturedOn', 'alleys']);
+    expect(open(raster([null]), { purpose: 'vigour' })).toEqual(['holds', 'capturedOn', 'alleys', 'growthStage']);
     expect(open(raster([null]), { purpose: 'elevation' })).toEqual(['unit']);
     expect(open(raster([null]), { purpose: 'soil' })).toEqual(['soilAs']);
     expect(open(raster([null]), { purpose: 'conductivity' })).toEqual(['unit', 'capturedOn', 'steelTrellis']);
@@ -25,10 +25,10 @@ describe('questions about a picture', () => {
 
   it('with several bands ask for the bands of the index and no others', () => {
     const bands = raster(['Red', 'Near infrared', 'Red edge']);
-    expect(open(bands, { purpose: 'vigour', value: 'ndvi' })).toEqual(['nirBand', 'redBand', 'capturedOn', 'alleys']);
-    expect(open(bands, { purpose: 'vigour', value: 'ndre' })).toEqual(['nirBand', 'redEdgeBand', 'capturedOn', 'alleys']);
-    expect(open(bands, { purpose: 'vigour', value: 'gndvi' })).toEqual(['nirBand', 'greenBand', 'capturedOn', 'alleys']);
-    expect(open(bands, { purpose: 'vigour', value: 'band' })).toEqual(['band', 'holds', 'capturedOn', 'alleys']);
+    expect(open(bands, { purpose: 'vigour', value: 'ndvi' })).toEqual(['nirBand', 'redBand', 'capturedOn', 'alleys', 'growthStage', 'canopy']);
+    expect(open(bands, { purpose: 'vigour', value: 'ndre' })).toEqual(['nirBand', 'redEdgeBand', 'capturedOn', 'alleys', 'growthStage', 'canopy']);
+    expect(open(bands, { purpose: 'vigour', value: 'gndvi' })).toEqual(['nirBand', 'greenBand', 'capturedOn', 'alleys', 'growthStage', 'canopy']);
+    expect(open(bands, { purpose: 'vigour', value: 'band' })).toEqual(['band', 'holds', 'capturedOn', 'alleys', 'growthStage']);
     expect(open(bands, { purpose: 'elevation' })).toEqual(['band', 'unit']);
   });
 
@@ -44,7 +44,7 @@ describe('questions about a picture', () => {
   });
 
   it('take "nobody knows the day" for an answer', () => {
-    expect(open(raster([null]), { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'unknown' })).toEqual([]);
+    expect(open(raster([null]), { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'unknown', growthStage: 'unknown', canopy: 'all' })).toEqual([]);
   });
 });
 

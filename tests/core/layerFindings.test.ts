@@ -19,7 +19,7 @@ describe('findings about a layer', () => {
   it('are none for a full, dated picture of fine pixels', () => expect(findings(slope)).toEqual([]));
 
   it('call 60 % of coverage 60 % and red, 95 % amber, 99 % nothing', () => {
-    expect(findings((col, row) => (col < 30 ? slope(col, row) : NaN))[0]).toEqual({ code: 'partial', severity: 'red', params: { percent: 60, needed: 90 } });
+    expect(findings((col, row) => (col < 30 ? slope(col, row) : NaN))[0]).toMatchObject({ code: 'partial', severity: 'red', params: { percent: 60, needed: 90 } });
     expect(codes(findings((col, row) => (row * 50 + col < 1425 ? slope(col, row) : NaN)))).toEqual(['amber gaps']);
     expect(codes(findings((col, row) => (row * 50 + col < 1485 ? slope(col, row) : NaN)))).toEqual([]);
   });
@@ -44,6 +44,29 @@ describe('findings about a layer', () => {
     expect(codes(findings(slope, { pixelSizeM: 1.25 }))).toEqual(['amber alleyMixed']);
     expect(codes(findings(slope, { pixelSizeM: 0.5 }))).toEqual([]);
     expect(codes(findings(slope, { pixelSizeM: 10 }))).toEqual(['amber alleyMixed', 'note coarsePixels']);
+  });
+
+  it('say where they hold: gaps, impossible values and a cut-off end by their cells, a day that is missing by none', () => {
+    const at = (found: ReturnType<typeof findings>, code: string) => [...(found.find((finding) => finding.code === code)?.cells ?? [])].flatMap((mark, cell) => (mark === 1 ? cell : []));
+    const column = (col: number) => Array.from({ length: 30 }, (_, row) => row * 50 + col);
+    expect(at(findings((col, row) => (col === 7 || col === 8 ? NaN : slope(col, row))), 'gaps')).toEqual([...column(7), ...column(8)].sort((a, b) => a - b));
+    expect(at(findings((col, row) => (col === 3 ? -2 : slope(col, row))), 'impossible')).toEqual(column(3));
+    expect(at(findings((col, row) => (col < 4 ? 0.1 : slope(col, row))), 'saturated')).toHaveLength(4 * 30);
+    expect(findings(slope, { measuredOn: null })[0]!.cells).toBeUndefined();
+  });
+
+  it('weigh the growth stage', () => {
+    expect(codes(findings(slope, { growthStage: 'flowering' }))).toEqual(['amber earlyCanopy']);
+    expect(codes(findings(slope, { growthStage: 'leafFall' }))).toEqual(['amber leafFall']);
+    expect(codes(findings(slope, { growthStage: 'unknown' }))).toEqual(['note noStage']);
+    expect(codes(findings(slope, { growthStage: 'veraison' }))).toEqual([]);
+  });
+
+  it('stop a file whose outline is 3.28 times that of a block, and doubt a canopy that is not apart from the alleys', () => {
+    expect(codes(findings(slope, { scaleTimes: 3.2808 }))).toEqual(['red scale']);
+    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.8, share: 0.3 } }))).toEqual(['note canopyOnly']);
+    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.4, share: 0.3 } }))).toEqual(['amber canopyUnclear', 'note canopyOnly']);
+    expect(codes(findings(slope, { canopy: { threshold: null, separability: 0.1, share: 0.3 } }))).toEqual(['amber rowsMissCanopy', 'note canopyByRows']);
   });
 
   it('remember steel trellis and thin surveys', () => {

@@ -36,7 +36,7 @@ describe('from a vigour image to a pick lot', () => {
     await page.goto(`${app.url}/e/${estateId}/imports`);
     await page.locator('input[type=file]').setInputFiles([vigourFile(), soilZip(), elevationFile()]);
     await page.locator('li.import-line', { hasText: 'gate-elevation.tif' }).waitFor({ timeout: 90_000 });
-    await answer(page, 'gate-vigour.tif', { 'What is it?': 'Vigour image', 'What shall be made of its bands?': 'NDVI (near infrared, red)', 'Which band is near infrared?': 'Band 2', 'Which band is red?': 'Band 1', 'When was it taken?': '2026-07-14', 'How were the alleys?': 'mown' });
+    await answer(page, 'gate-vigour.tif', { 'What is it?': 'Vigour image', 'What shall be made of its bands?': 'NDVI (near infrared, red)', 'Which band is near infrared?': 'Band 2', 'Which band is red?': 'Band 1', 'When was it taken?': '2026-07-14', 'How were the alleys?': 'mown', 'At which growth stage?': 'veraison', 'Which pixels shall count?': 'all of them' });
     await answer(page, 'gate-soil.zip', { 'What is it?': 'Soil', 'Which field holds the value?': 'AWC_MM', 'Are these values or classes?': 'values', 'When was it taken?': '2020-03-01' });
     await answer(page, 'gate-elevation.tif', { 'What is it?': 'Elevation', 'What shall be made of its bands?': 'one band as it is', 'Which band?': 'Band 1', 'In which unit?': 'metres', 'When was it taken?': '2019-01-01' });
     await page.goto(`${app.url}${blockPath}`);

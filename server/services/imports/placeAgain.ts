@@ -13,7 +13,7 @@ import { targetBlocks } from './whereabouts.ts';
 /** Each file again, on a block whose grid is new. Files that do not reach it leave it without their layers. */
 export async function placeAllOn(context: JobContext): Promise<unknown> {
   const { estateId, subjectId: blockId } = context.job;
-  const blocks = await targetBlocks(estateId, { blockId: blockId! });
+  const blocks = await targetBlocks(estateId, { blockId: blockId!, withRows: true });
   if (blocks.length === 0) return { placed: 0 };
   const layers = groupBy(await Layer.query().where({ estateId }).whereNull('retiredAt').whereNotNull('importId').orderBy('createdAt'), (layer) => layer.importId!);
   const records = await FileImport.query().where({ estateId }).findByIds([...layers.keys()]);
@@ -36,7 +36,7 @@ export async function placeLayerAgain(context: JobContext): Promise<unknown> {
   const { estateId, subjectId } = context.job;
   const layer = await Layer.query().findOne({ estateId, id: subjectId }).whereNull('retiredAt').whereNotNull('importId').throwIfNotFound();
   const record = await FileImport.query().findOne({ estateId, id: layer.importId }).throwIfNotFound();
-  const blocks = await targetBlocks(estateId);
+  const blocks = await targetBlocks(estateId, { withRows: record.answers.canopy === 'rows' });
   const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks }));
   const layers = await Layer.query().where({ estateId, importId: record.id }).whereNull('retiredAt').orderBy('createdAt');
   await replaceOn(blocks.map((block) => block.id), layers, placed);

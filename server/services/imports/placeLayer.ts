@@ -32,7 +32,7 @@ async function placeImport(context: JobContext): Promise<unknown> {
   const { estateId, subjectId, createdBy } = context.job;
   const record = await FileImport.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
   if (record.state === 'done') return placedBefore(record);
-  const blocks = await targetBlocks(estateId);
+  const blocks = await targetBlocks(estateId, { withRows: record.answers.canopy === 'rows' });
   const placed = await withSource(record, record.answers, (source) => computeInJob<PlacedLayer[]>(context, 'placeFile', { source, blocks, withRelief: true })).catch(async (error: unknown) => {
     const problem = problemNote(error);
     if (problem !== null) await FileImport.query().where({ estateId, id: record.id, state: 'ready' }).patch(storable({ state: 'refused' as const, problem }));

@@ -2,6 +2,7 @@ import type { MultiPolygon } from 'geojson';
 import type { TransactionOrKnex } from 'objection';
 import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { Block } from '../../models/Block.ts';
+import { BlockRow } from '../../models/BlockRow.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import type { TargetBlock } from '../../placing/placed.ts';
 
@@ -38,9 +39,15 @@ export async function blocksUnder(estateId: string, outline: readonly (readonly 
   };
 }
 
-/** Blocks as a layer is placed on them: all of the estate, or one. */
-export async function targetBlocks(estateId: string, options: { blockId?: string; trx?: TransactionOrKnex } = {}): Promise<TargetBlock[]> {
-  const query = Block.query(options.trx).where({ estateId }).whereNull('retiredAt').orderBy('name').select('id', 'cellSizeM', 'rowSpacingM', asGeoJson('boundary').as('boundary'));
+/** Blocks as a layer is placed on them: all of the estate, or one; with their rows where these are asked for. */
+export async function targetBlocks(estateId: string, options: { blockId?: string; withRows?: boolean; trx?: TransactionOrKnex } = {}): Promise<TargetBlock[]> {
+  const query = Block.query(options.trx).where({ estateId }).whereNull('retiredAt').orderBy('name').select('id', 'cellSizeM', 'rowSpacingM', 'rowBearingDeg', asGeoJson('boundary').as('boundary'));
   if (options.blockId !== undefined) query.where({ id: options.blockId });
-  return (await query).map(({ id, cellSizeM, rowSpacingM, boundary }) => ({ id, cellSizeM, rowSpacingM, boundary: (boundary as MultiPolygon).coordinates as unknown as MultiPolygonLonLat }));
+  const blocks = await query;
+  const rows = options.withRows ? await BlockRow.query(options.trx).where({ estateId }).whereNull('retiredAt').whereIn('blockId', blocks.map(({ id }) => id)).orderBy('ordinal').select('blockId', 'pieces') : [];
+  return blocks.map(({ id, cellSizeM, rowSpacingM, rowBearingDeg, boundary }) => ({
+    id, cellSizeM, rowSpacingM, rowBearingDeg,
+    boundary: (boundary as MultiPolygon).coordinates as unknown as MultiPolygonLonLat,
+    rows: rows.filter(({ blockId }) => blockId === id).flatMap(({ pieces }) => pieces.map((piece): LonLat[] => [piece.from, ...piece.bends, piece.to])),
+  }));
 }

@@ -19,6 +19,13 @@ export async function readCells(access: Access, layerId: string, blockId: string
   return { bytes: here.cells, grid: { key, epsg, x0, y0, cellSizeM, cols, rows, cornersLonLat: cornersOf({ epsg, x0, y0, cellSizeM, cols, rows }) } };
 }
 
+/** Where the findings about a layer hold on a block: a byte a cell as cells are stored; null where none has a place of its own. */
+export async function readMarks(access: Access, layerId: string, blockId: string): Promise<Buffer | null> {
+  await Layer.query().findOne({ estateId: access.estateId, id: layerId }).whereNull('retiredAt').throwIfNotFound();
+  const here = await BlockLayer.query().findOne({ estateId: access.estateId, layerId, blockId }).select('marks').throwIfNotFound();
+  return here.marks;
+}
+
 /** The lie of the land round all blocks; null where no elevations were ever brought in. */
 export async function readRelief(access: Access): Promise<ReliefView | null> {
   const relief = await Relief.query().findById(access.estateId);

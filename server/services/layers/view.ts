@@ -1,5 +1,5 @@
 import { layerTypeIds } from '../../../shared/catalog/layerTypes.ts';
-import type { BlockLayerView, Readiness } from '../../../shared/contracts/layers.ts';
+import { findingSeverities, type BlockLayerView, type Readiness } from '../../../shared/contracts/layers.ts';
 import type { Access } from '../../access/access.ts';
 import { Block } from '../../models/Block.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
@@ -27,7 +27,7 @@ export async function listLayers(access: Access, blockId: string): Promise<Block
       measuredOn: layer.measuredOn,
       coverage: here.coverage,
       statistics: here.statistics,
-      findings: here.findings,
+      findings: gravestFirst(here.findings),
       readiness: readinessOf(here, block.gridKey),
       override: here.override === null ? null : { by: here.override.by, reason: here.override.reason, at: here.override.at },
       survey: here.survey,
@@ -42,6 +42,10 @@ export async function listLayers(access: Access, blockId: string): Promise<Block
   const sources = views.filter((view) => view.derivedFrom === null || views.every((other) => other.id !== view.derivedFrom));
   const inOrder = (derived: BlockLayerView[]) => [...derived].sort((a, b) => layerTypeIds.indexOf(a.type) - layerTypeIds.indexOf(b.type));
   return sources.flatMap((source) => [source, ...inOrder(views.filter((view) => view.derivedFrom === source.id))]);
+}
+
+function gravestFirst(findings: BlockLayer['findings']): BlockLayer['findings'] {
+  return [...findings].sort((a, b) => findingSeverities.indexOf(a.severity) - findingSeverities.indexOf(b.severity));
 }
 
 /** What a layer may be used for, gravest reason first. */

@@ -8,11 +8,12 @@ interface Words {
   readonly format: Format;
 }
 
-const lengths = new Set(['pixelM', 'spacingM', 'cellM']);
+/** Lengths in the sentences and how many decimals they deserve. */
+const lengths = new Map([['pixelM', 2], ['spacingM', 2], ['cellM', 2], ['widthM', 0]]);
 
 /** A finding about a layer as a sentence: fact, value, and what it means. */
 export function findingWords(finding: LayerFinding, { t, format }: Words): string {
-  const named = Object.fromEntries(Object.entries(finding.params).map(([name, value]) => [name, typeof value !== 'number' ? value : lengths.has(name) ? format.withUnit('length', value, 2) : format.number(value, Number.isInteger(value) ? 0 : 2)]));
+  const named = Object.fromEntries(Object.entries(finding.params).map(([name, value]) => [name, typeof value !== 'number' ? value : lengths.has(name) ? format.withUnit('length', value, lengths.get(name)!) : format.number(value, Number.isInteger(value) ? 0 : 2)]));
   const open = finding.code === 'impossible' && (finding.params.min === undefined || finding.params.max === undefined);
   return t(`layers.finding.${finding.code}${open ? 'Open' : ''}`, named);
 }

@@ -5,6 +5,7 @@
  */
 import { fittedSurface, withoutSurface } from './covarianceTrend.ts';
 import type { Cells, Grid } from './grid.ts';
+import { quantilesOf } from './quantile.ts';
 import { smooth } from './smooth.ts';
 import { standardiseClipped } from './verdictField.ts';
 import { arePlateaus } from './verdictPlateaus.ts';
@@ -35,14 +36,18 @@ const ROW_SMOOTHING_M = 3;
 export function sensorStripes(grid: Grid, cells: Cells, { showsRows }: { showsRows: boolean }): SensorStripes | null {
   const looked = showsRows ? smooth(grid, cells, { sigmaM: ROW_SMOOTHING_M }) : cells;
   const mask = grid.inside.map((inside, cell) => (inside === 1 && !Number.isNaN(looked[cell]!) ? 1 : 0));
-  if (mask.reduce((sum, value) => sum + value, 0) < LEAST_CELLS) return null;
+  const values = looked.filter((_, cell) => mask[cell] === 1);
+  if (values.length < LEAST_CELLS) return null;
+  // A few odd cells on one value everywhere: nothing is left to stand in stripes.
+  const [low, high] = quantilesOf(values, [0.005, 0.995]);
+  if (low === high) return null;
   const plane = { width: grid.cols, height: grid.rows, mask };
   const stepCells = Math.max(1, STEP_M / grid.cellSizeM);
-  const values = standardiseClipped(looked, mask);
-  const pattern = stripePattern(plane, values, stepCells);
+  const standard = standardiseClipped(looked, mask);
+  const pattern = stripePattern(plane, standard, stepCells);
   const across = { pattern, stepCells };
-  if (!pattern.isStriped || pattern.strongest * pattern.residualVariance < LEAST_OF_LAYER || arePlateaus(strongestProfile(plane, values, across), [], stepCells * grid.cellSizeM)) return null;
-  const rest = withoutSurface(plane, values, fittedSurface(plane, values, 2));
+  if (!pattern.isStriped || pattern.strongest * pattern.residualVariance < LEAST_OF_LAYER || arePlateaus(strongestProfile(plane, standard, across), [], stepCells * grid.cellSizeM)) return null;
+  const rest = withoutSurface(plane, standard, fittedSurface(plane, standard, 2));
   const widthM = meanWidth(strongestProfile(plane, rest, across).means) * stepCells * grid.cellSizeM;
   if (widthM > WIDEST_M) return null;
   const evened = withoutStripes(plane, rest, across);

@@ -36,7 +36,6 @@ export function rowStrips(lines: readonly (readonly XY[])[], halfWidthM: number)
   };
 }
 
-// eslint-disable-next-line max-params -- the innermost of loops over millions of pixels
 function squaredDistance(segments: readonly number[], at: number, x: number, y: number): number {
   const [x1, y1] = [segments[at]!, segments[at + 1]!];
   const [dx, dy] = [segments[at + 2]! - x1, segments[at + 3]! - y1];

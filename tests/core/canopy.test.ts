@@ -22,9 +22,9 @@ describe('threshold after Otsu', () => {
     let state = 9;
     const counts = Array.from({ length: 64 }, () => (state = (state * 48_271) % 2_147_483_647) % 100);
     const between = (bin: number) => {
-      const part = (from: number, to: number) => counts.slice(from, to).reduce(([n, sum], count, at) => [n + count, sum + count * (from + at)], [0, 0]);
-      const [[n0, s0], [n1, s1]] = [part(0, bin + 1), part(bin + 1, 64)] as [[number, number], [number, number]];
-      return n0 * n1 * (s0 / n0 - s1 / n1) ** 2;
+      const number = (from: number, to: number) => counts.slice(from, to).reduce((sum, count) => sum + count, 0);
+      const mean = (from: number, to: number) => counts.slice(from, to).reduce((sum, count, at) => sum + count * (from + at), 0) / number(from, to);
+      return number(0, bin + 1) * number(bin + 1, 64) * (mean(0, bin + 1) - mean(bin + 1, 64)) ** 2;
     };
     const best = Array.from({ length: 63 }, (_, bin) => bin).reduce((most, bin) => (between(bin) > between(most) ? bin : most));
     expect(otsuThreshold(counts)!.bin).toBe(best);

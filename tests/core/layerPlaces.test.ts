@@ -20,7 +20,7 @@ describe('stripes of a sensor', () => {
   it('are found with their bearing, width and the cells that lie above', () => {
     // Swaths of 24 m along east–west with levels of their own.
     const levels = [0, 0.9, 0.1, 1, -0.1, 0.8, 0.2, 1, 0];
-    const found = sensorStripes(grid, cellsOf((x, y) => levels[Math.floor(y / 24)]! + 0.3 * noise()), { showsRows: false })!;
+    const found = sensorStripes(grid, cellsOf((_x, y) => levels[Math.floor(y / 24)]! + 0.3 * noise()), { showsRows: false })!;
     expect(found.bearingDeg).toBe(90);
     expect(found.widthM).toBeGreaterThan(18);
     expect(found.widthM).toBeLessThan(32);
@@ -36,7 +36,7 @@ describe('stripes of a sensor', () => {
   });
 
   it('are not seen in noise, a slope, a hump, a border between two soils or a constant', () => {
-    const quiet: ((x: number, y: number) => number)[] = [() => noise(), (x, y) => x / 100 + y / 300 + 0.2 * noise(), (x, y) => Math.exp(-(((x - 120) / 60) ** 2) - ((y - 90) / 50) ** 2) + 0.2 * noise(), (x) => (x < 120 ? 0 : 1) + 0.3 * noise()];
+    const quiet: ((x: number, y: number) => number)[] = [() => noise(), (x, y) => x / 100 + y / 300 + 0.2 * noise(), (x, y) => Math.exp(-(((x - 120) / 60) ** 2) - ((y - 90) / 50) ** 2) + 0.2 * noise(), (x) => (x < 120 ? 0 : 1) + 0.3 * noise(), () => 0.4];
     for (const field of quiet) expect(sensorStripes(grid, cellsOf(field), { showsRows: false })).toBeNull();
   });
 });

@@ -15,6 +15,7 @@ import * as m010 from '../migrations/010_zoning_editors.ts';
 import * as m008 from '../migrations/008_harvest_records.ts';
 import * as m013 from '../migrations/013_correction_index.ts';
 import * as m014 from '../migrations/014_finding_places.ts';
+import * as m015 from '../migrations/015_lot_history.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -32,6 +33,7 @@ const migrations: Record<string, Knex.Migration> = {
   '008_harvest_records': m008,
   '013_correction_index': m013,
   '014_finding_places': m014,
+  '015_lot_history': m015,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

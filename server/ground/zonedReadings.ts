@@ -51,6 +51,7 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
   const zoneByBag = new Map(bags.map((bag) => [bag.id, zoneOfBag(ground, zoneOf, bag.vines)]));
   const dayOf = dayIn(estate.timeZone);
   const reasonThen = options.until ? await exclusionsAt(estateId, rows, options.until) : null;
+  const stateThen = options.until ? await labStatesAt(estateId, options.until) : null;
   return rows.map((row) => {
     const vine = vineOf(ground, row);
     const isOfBag = vine < 0 && row.bagId !== null;
@@ -66,7 +67,7 @@ export async function zonedReadings(estateId: string, options: { ground: BlockVi
       vineKey: isOfBag ? `bag ${row.bagId}` : vine < 0 || (row.flags as string[]).includes('separate') ? row.id : String(vine),
       roundId: row.roundId,
       seasonId: row.seasonId,
-      state: row.state,
+      state: stateThen === null || row.source !== 'lab' ? row.state : (stateThen.get(row.id) ?? 'provisional'),
       excludedReason: reasonThen?.has(row.id) ? reasonThen.get(row.id)! : row.excludedReason,
       wetFruit: Array.isArray(row.flags) && row.flags.includes('wetFruit'),
       vine,
@@ -91,6 +92,15 @@ async function exclusionsAt(estateId: string, rows: readonly { id: string }[], u
   return new Map(later.map(({ subjectId, before }) => [subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null]));
 }
 
+/** The state of the lab's figures as the history had it at that moment; a figure that it does not name had not been checked. */
+async function labStatesAt(estateId: string, until: Date): Promise<Map<string, Reading['state']>> {
+  const marked = await AuditEntry.query().where({ estateId, action: 'lab.state' }).where('at', '<=', until).orderBy('id');
+  return new Map(marked.flatMap(({ after }) => {
+    const { state, resultIds } = after as { state: Reading['state']; resultIds: string[] };
+    return resultIds.map((id) => [id, state] as const);
+  }));
+}
+
 const reachM = 3;
 
 function vineOf(ground: BlockVines, row: Reading): number {
@@ -108,6 +118,11 @@ function vineOf(ground: BlockVines, row: Reading): number {
     }
   }
   return best;
+}
+
+/** Stands in forecasts and lots: not left out, and by now more than a figure of the lab that nobody has checked. */
+export function isFirm({ excludedReason, state }: Pick<ZonedReading, 'excludedReason' | 'state'>): boolean {
+  return excludedReason === null && state !== 'provisional';
 }
 
 /** Calendar day of an instant in a time zone, as yyyy-mm-dd. */

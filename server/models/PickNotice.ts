@@ -4,7 +4,8 @@ export class PickNotice extends EstateModel {
   static override tableName = 'pick_notices';
   static override jsonAttributes = ['body'];
 
-  declare lotId: string;
+  /** Null once the lot was deleted: the number on paper still has an answer. */
+  declare lotId: string | null;
   declare number: number;
   /** Unguessable: what a code on paper leads to. */
   declare code: string;

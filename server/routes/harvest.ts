@@ -7,8 +7,10 @@ import { accessOf, allow, idParam } from '../access/guard.ts';
 import { enterCellarResult, listCellarResults, listFactors, switchFactor } from '../services/lots/cellar.ts';
 import { listNotices, noticePeople, noticeState, printNotice, readNotice, sendNotice } from '../services/lots/notices.ts';
 import { seasonLetter } from '../services/lots/letter.ts';
+import { reopenLot } from '../services/lots/reopenLot.ts';
 import { seasonReview } from '../services/lots/review.ts';
 import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
+import { versionMatched } from './etag.ts';
 
 const letterQuery = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
 const today = () => new Date().toISOString().slice(0, 10);
@@ -33,6 +35,11 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   router.get('/notice-people', allow('notices.send'), async (request, response) => {
     const items = await noticePeople(accessOf(request));
     response.json({ items, total: items.length });
+  });
+  router.post('/lots/:lotId/reopen', allow('lots.confirm'), async (request, response) => {
+    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    await reopenLot(accessOf(request), idParam(request, 'lotId'), versionMatched(request), { publicUrl, now: new Date() });
+    response.status(204).end();
   });
   router.post('/lots/:lotId/notices', allow('notices.send'), async (request, response) => {
     const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');

@@ -14,9 +14,9 @@ import { blockRipening } from '../services/results/ripening.ts';
 import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
-const boardQuery = z.object({ scenario: id.optional() });
+const boardQuery = z.object({ scenario: id.optional(), known: isoDate.optional() });
 const resultsQuery = z.object({ season: id.optional() });
-const ripeningQuery = z.object({ known: isoDate.optional() });
+const ripeningQuery = z.object({ known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
 const today = () => new Date().toISOString().slice(0, 10);
 
 /** Results by zone, pick lots, what-ifs and tanks. Writes on a lot name its version in If-Match. */
@@ -28,12 +28,13 @@ export function lotRoutes(): Router {
     response.json(await zoneResults(accessOf(request), idParam(request, 'zoningId'), season ? { seasonId: season } : {}));
   });
   router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
-    const { known } = ripeningQuery.parse(request.query);
-    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: today(), knownOn: known ?? null }));
+    const { known, unchecked } = ripeningQuery.parse(request.query);
+    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: today(), knownOn: known ?? null, unchecked }));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {
-    response.json(await lotsBoard(accessOf(request), { scenarioId: boardQuery.parse(request.query).scenario ?? null, today: today() }));
+    const { scenario, known } = boardQuery.parse(request.query);
+    response.json(await lotsBoard(accessOf(request), { scenarioId: scenario ?? null, today: today(), knownOn: known ?? null }));
   });
   router.post('/lots', allow('lots.build', 'propose'), async (request, response) => {
     response.status(201).json(await createLot(accessOf(request), newLot.parse(request.body), today()));

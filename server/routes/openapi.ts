@@ -141,6 +141,7 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}/lots/{lotId}', summary: 'Change name, wine, date or tank of a lot (If-Match)', body: lotChange },
   { method: 'put', path: '/api/estates/{estateId}/lots/{lotId}/parts', summary: 'Set the zones of a lot, whole or by rows (If-Match)', body: lotParts },
   { method: 'post', path: '/api/estates/{estateId}/lots/{lotId}/confirm', summary: 'Confirm a lot and its date (If-Match)' },
+  { method: 'post', path: '/api/estates/{estateId}/lots/{lotId}/reopen', summary: 'Make a confirmed lot a draft again; its notice is void from then on (If-Match)' },
   { method: 'post', path: '/api/estates/{estateId}/scenarios', summary: 'Copy the lots as a what-if', body: newScenario },
   { method: 'post', path: '/api/estates/{estateId}/tanks', summary: 'Add a tank', body: newTank },
   { method: 'patch', path: '/api/estates/{estateId}/tanks/{tankId}', summary: 'Change a tank', body: tankChange },

@@ -1,6 +1,7 @@
 import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Missing, Unusable } from '../errors.ts';
+import { dayIn } from '../ground/dayIn.ts';
 import { peopleWhoMay } from '../ground/peopleWhoMay.ts';
 import { restrictionViews } from '../ground/restrictionViews.ts';
 import { queueMail } from '../mail/outbox.ts';
@@ -36,14 +37,16 @@ export async function setRestriction(access: Access, input: NewRestriction): Pro
   });
 }
 
-/** Ends a restriction before its time. Needs a person who may and a reason; both stay on record. */
+/** Ends a restriction, entry and pre-harvest interval alike, before its time. Needs a person who may and a reason; both stay on record. */
 export async function liftRestriction(access: Access, restrictionId: string, options: { reason: string; now: Date }): Promise<void> {
   await EntryRestriction.transaction(async (trx) => {
     const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
     if (row.liftedAt) throw new Clash('lifted', 'This restriction was lifted already.');
-    if (row.endsAt <= options.now) throw new Clash('over', 'This restriction has ended by itself.');
+    const { timeZone } = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+    const isPickOpen = row.noPickBefore === null || row.noPickBefore <= dayIn(timeZone, options.now);
+    if (row.endsAt <= options.now && isPickOpen) throw new Clash('over', 'This restriction has ended by itself.');
     await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
-    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString() }, reason: options.reason });
+    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString(), noPickBefore: row.noPickBefore }, after: { liftedAt: options.now.toISOString() }, reason: options.reason });
   });
 }
 

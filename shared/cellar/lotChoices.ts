@@ -36,6 +36,8 @@ export interface ChoiceRules {
   readonly leastChance: number;
   /** Tonnes that can be picked and taken in on one day; null for no limit. */
   readonly dayTonnes: number | null;
+  /** Tonnes that the press takes on one day: white and rosé need it on the day they come in; null for no limit. */
+  readonly pressTonnes: number | null;
 }
 
 export interface LotChoice {
@@ -77,7 +79,7 @@ export function lotChoices(zones: readonly ChoiceZone[], tanks: readonly ChoiceT
       const whole = group.map((index) => zones[index]!);
       const tonnes = sumTonnes(whole);
       // Larger groups only grow; what is too big for every tank or day stays so.
-      if (tonnes.value * litresOf(whole, rules).value > mostLitres || (rules.dayTonnes !== null && tonnes.value > rules.dayTonnes)) continue;
+      if (tonnes.value * litresOf(whole, rules).value > mostLitres || tonnes.value > dayLimit(whole, rules)) continue;
       const unlike = unlikeness(whole);
       if (unlike !== null && missedTarget(whole, rules) === null) {
         tanks.forEach((tank, index) => {
@@ -93,6 +95,14 @@ export function lotChoices(zones: readonly ChoiceZone[], tanks: readonly ChoiceT
   grow([], 0);
   const complete = visits < MOST_VISITS && found.length <= MOST_CHOICES;
   return { choices: found.length <= MOST_CHOICES ? found : thin(found), complete };
+}
+
+/** Red must needs no press on the day it comes in; white and rosé do. */
+export const isPressed = ({ wineType }: Pick<ChoiceZone, 'wineType'>): boolean => wineType !== 'red';
+
+/** Tonnes of these zones that one day takes in: what can be picked, and for what is pressed at once what the press takes. */
+export function dayLimit(zones: readonly ChoiceZone[], { dayTonnes, pressTonnes }: Pick<ChoiceRules, 'dayTonnes' | 'pressTonnes'>): number {
+  return Math.min(dayTonnes ?? Infinity, zones.some(isPressed) ? (pressTonnes ?? Infinity) : Infinity);
 }
 
 /** Single zones and the cheapest groupings a tonne. */

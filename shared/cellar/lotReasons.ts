@@ -1,4 +1,4 @@
-import { COMPARED, distanceFrom, litresOf, missedTarget, mayJoin, sumTonnes, type ChoiceRules, type ChoiceTank, type ChoiceZone, type Compared, type LotChoice } from './lotChoices.ts';
+import { COMPARED, dayLimit, distanceFrom, litresOf, missedTarget, mayJoin, sumTonnes, type ChoiceRules, type ChoiceTank, type ChoiceZone, type Compared, type LotChoice } from './lotChoices.ts';
 import { fitTank, litresFrom } from './tankFit.ts';
 
 /** Why each zone is where it is, in codes and figures that a screen puts into words. */
@@ -9,7 +9,7 @@ export type PlacedReason =
   | { readonly code: 'alike'; readonly distance: number; readonly elsewhere: number | null };
 
 export type LeftOutReason =
-  | { readonly code: 'overDay'; readonly tonnes: number; readonly limit: number }
+  | { readonly code: 'overDay' | 'overPress'; readonly tonnes: number; readonly limit: number }
   | { readonly code: 'notRead'; readonly measure: Compared }
   | { readonly code: 'outsideTarget'; readonly measure: Compared; readonly value: number }
   | { readonly code: 'tooBig'; readonly litres: number; readonly limit: number; readonly chance: number }
@@ -35,6 +35,7 @@ function distance(zone: ChoiceZone, lot: readonly ChoiceZone[]): number | null {
 export function whyLeftOut(zone: ChoiceZone, tanks: readonly ChoiceTank[], rules: ChoiceRules): LeftOutReason {
   const tonnes = sumTonnes([zone]);
   if (rules.dayTonnes !== null && tonnes.value > rules.dayTonnes) return { code: 'overDay', tonnes: tonnes.value, limit: rules.dayTonnes };
+  if (tonnes.value > dayLimit([zone], rules)) return { code: 'overPress', tonnes: tonnes.value, limit: dayLimit([zone], rules) };
   const missed = missedTarget([zone], rules);
   if (missed !== null) return missed.value === null ? { code: 'notRead', measure: missed.measure } : { code: 'outsideTarget', measure: missed.measure, value: missed.value };
   const litres = litresFrom(tonnes, litresOf([zone], rules));

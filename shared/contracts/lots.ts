@@ -35,6 +35,8 @@ export const lotZone = z.object({
   yieldParts: z.array(yieldPart),
   dominating: z.string().nullable(),
   latest: z.object({ brix: figure.nullable(), ph: figure.nullable(), ta: figure.nullable(), on: z.string().nullable() }),
+  /** Figures of the lab that nobody has checked yet; they count in nothing here. */
+  unchecked: z.number().int(),
   freeShare: z.number(),
   freeTonnes: z.number(),
   /** Rows that cross the zone, in order; `free` when none of its vines there is in a lot. */
@@ -71,6 +73,10 @@ export const lotSummary = z.object({
 });
 export type LotSummary = z.infer<typeof lotSummary>;
 
+/** What somebody entered that rules out picking a lot on its day; `until` is a day for a pre-harvest interval, an instant for entry. */
+export const pickStop = z.object({ restrictionId: id, kind: z.enum(['pick', 'entry']), blockName: z.string(), product: z.string(), labelInterval: z.string(), until: z.string(), setBy: z.string(), setAt: z.string() });
+export type PickStop = z.infer<typeof pickStop>;
+
 export const lotView = z.object({
   id,
   name: z.string(),
@@ -81,6 +87,7 @@ export const lotView = z.object({
   version: z.number().int(),
   crew: z.string(),
   lines: z.array(lotLine),
+  stops: z.array(pickStop),
   summary: lotSummary,
 });
 export type LotView = z.infer<typeof lotView>;
@@ -98,6 +105,10 @@ export const lotsBoard = z.object({
   zones: z.array(lotZone),
   lots: z.array(lotView),
   tanks: z.array(tankView),
+  /** Who may lift what stops a pick. */
+  mayLift: z.array(z.string()),
+  /** The day it is shown as of, or null for now. */
+  knownOn: z.string().nullable(),
 });
 export type LotsBoard = z.infer<typeof lotsBoard>;
 

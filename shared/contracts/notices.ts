@@ -22,7 +22,7 @@ export type NoticeDifference = z.infer<typeof noticeDifference>;
 export const noticeView = z.object({
   id,
   number: z.number().int(),
-  lotId: id,
+  lotId: id.nullable(),
   replacesNumber: z.number().int().nullable(),
   /** Set once a newer notice of the lot is out: this one no longer holds. */
   voidAt: z.string().nullable(),

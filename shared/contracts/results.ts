@@ -24,6 +24,8 @@ export const zoneResult = measuredMean.extend({
   /** Readings still missing to the margin if the spread stays; null while fewer than two say nothing of the spread. */
   more: z.number().int().nullable(),
   provisional: z.number().int(),
+  /** All its figures were called final. */
+  isFinal: z.boolean(),
   leftOut: z.number().int(),
 });
 export type ZoneResult = z.infer<typeof zoneResult>;
@@ -77,13 +79,15 @@ const trendView = z.discriminatedUnion('kind', [
 export const ripeningSeries = z.object({
   zone: z.number().int(),
   measure: z.string(),
-  points: z.array(z.object({ visit: z.string(), day: z.number().int(), value: z.number(), halfWidth: z.number().nullable(), n: z.number().int() })),
+  points: z.array(z.object({ visit: z.string(), day: z.number().int(), value: z.number(), halfWidth: z.number().nullable(), n: z.number().int(), /** Figures of it that nobody has checked. */ provisional: z.number().int(), isFinal: z.boolean() })),
   change: visitChange.nullable(),
   trend: trendView,
   /** A straight line runs ahead of fruit that slows down. */
   bend: z.enum(['slowing', 'quickening', 'notDistinguishable']).nullable(),
   /** Where the mean of one more visit would lie; empty while the trend is refused. */
   forecast: z.array(z.object({ day: z.number().int(), value: z.number(), lower: z.number(), upper: z.number() })),
+  /** Visits that took their samples in another way than the newest: left out of the trend. */
+  otherWay: z.number().int(),
   /** Spread between vines on the newest visit. */
   sd: z.number().nullable(),
 });
@@ -95,6 +99,8 @@ export const ripeningView = resultsView.extend({
   record: z.array(z.object({ measure: z.string(), n: z.number().int(), better: z.number().int(), held: z.number().int(), few: z.boolean() })),
   /** The day it is shown as of, or null for now. */
   knownOn: z.string().nullable(),
+  /** Figures of the lab that nobody has checked: how many there are, and whether they count here. */
+  unchecked: z.object({ basis: z.enum(['out', 'in']), n: z.number().int() }),
   /** Wet fruit, rain and heat beside each visit. */
   conditions: z.array(visitConditions),
   /** Heat above 10 °C of the season so far; null while no temperatures are kept. */

@@ -26,7 +26,7 @@ const measure = z.enum(['brix', 'ph', 'ta']);
 
 const placedReason = z.object({ code: z.enum(['alone', 'alike']), distance: z.number().nullable(), elsewhere: z.number().nullable() });
 const leftOutReason = z.discriminatedUnion('code', [
-  z.object({ code: z.literal('overDay'), tonnes: z.number(), limit: z.number() }),
+  z.object({ code: z.enum(['overDay', 'overPress']), tonnes: z.number(), limit: z.number() }),
   z.object({ code: z.literal('notRead'), measure }),
   z.object({ code: z.literal('outsideTarget'), measure, value: z.number() }),
   z.object({ code: z.literal('tooBig'), litres: z.number(), limit: z.number(), chance: z.number() }),

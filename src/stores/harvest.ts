@@ -4,7 +4,6 @@ import type { z } from 'zod';
 import type { Role } from '../../shared/catalog/roles.ts';
 import type { CellarResultView, FactorView, factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
 import type { NoticeState, NoticeView, newNotice } from '../../shared/contracts/notices.ts';
-import type { RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { newTicket, ReviewView, ticketFile, TicketReading, TicketView } from '../../shared/contracts/tickets.ts';
 import { http } from '../lib/http.ts';
 
@@ -22,7 +21,6 @@ export interface NoticePerson {
 export const useHarvestStore = defineStore('harvest', () => {
   const notices = shallowRef<readonly NoticeView[]>([]);
   const people = shallowRef<readonly NoticePerson[]>([]);
-  const restrictions = shallowRef<readonly RestrictionView[]>([]);
   const tickets = shallowRef<readonly TicketView[]>([]);
   const review = shallowRef<ReviewView | null>(null);
   const results = shallowRef<readonly CellarResultView[]>([]);
@@ -35,10 +33,6 @@ export const useHarvestStore = defineStore('harvest', () => {
 
   async function loadPeople(estateId: string): Promise<void> {
     people.value = (await http.get<Listed<NoticePerson>>(at(estateId, 'notice-people'))).items;
-  }
-
-  async function loadRestrictions(estateId: string): Promise<void> {
-    restrictions.value = (await http.get<Listed<RestrictionView>>(at(estateId, 'restrictions'))).items;
   }
 
   async function send(estateId: string, lotId: string, notice: z.input<typeof newNotice>): Promise<number> {
@@ -91,5 +85,5 @@ export const useHarvestStore = defineStore('harvest', () => {
   /** Whether a notice on paper still holds; needs no sign-in. */
   const noticeState = (code: string): Promise<NoticeState> => http.get<NoticeState>(`/api/notice-state/${code}`);
 
-  return { results, factors, readTickets, loadCellar, enterCellar, switchFactor, noticeState, notices, people, restrictions, tickets, review, loadNotices, loadPeople, loadRestrictions, send, read, loadReview, loadTickets, enter };
+  return { results, factors, readTickets, loadCellar, enterCellar, switchFactor, noticeState, notices, people, tickets, review, loadNotices, loadPeople, send, read, loadReview, loadTickets, enter };
 });

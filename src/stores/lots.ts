@@ -21,9 +21,10 @@ export const useLotsStore = defineStore('lots', () => {
   let estate = '';
   const base = () => `/api/estates/${estate}`;
 
-  async function load(estateId: string, scenarioId: string | null = null): Promise<void> {
+  /** `knownOn`: as all of it stood on that day; empty for now. */
+  async function load(estateId: string, scenarioId: string | null = null, knownOn = ''): Promise<void> {
     estate = estateId;
-    board.value = await http.get<LotsBoard>(`${base()}/lots`, { query: { scenario: scenarioId } });
+    board.value = await http.get<LotsBoard>(`${base()}/lots`, { query: { scenario: scenarioId, known: knownOn === '' ? null : knownOn } });
   }
 
   const again = () => load(estate, board.value?.scenarioId ?? null);
@@ -46,6 +47,12 @@ export const useLotsStore = defineStore('lots', () => {
 
   async function confirm(lot: LotView): Promise<void> {
     await http.post(`${base()}/lots/${lot.id}/confirm`, undefined, { ifMatch: lot.version });
+    await again();
+  }
+
+  /** Makes a confirmed lot a draft again; its notice is void from then on. */
+  async function reopen(lot: LotView): Promise<void> {
+    await http.post(`${base()}/lots/${lot.id}/reopen`, undefined, { ifMatch: lot.version });
     await again();
   }
 
@@ -108,5 +115,5 @@ export const useLotsStore = defineStore('lots', () => {
     await again();
   }
 
-  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, loadDecisions, addTank, retireTank };
+  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, reopen, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, loadDecisions, addTank, retireTank };
 });

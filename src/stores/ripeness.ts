@@ -17,11 +17,14 @@ export const useRipenessStore = defineStore('ripeness', () => {
 
   let asked = 0;
 
-  /** `knownOn`: as it stood on that day; empty for now. The block asked for last is the one that is shown, whichever answer comes last. */
-  async function load(estateId: string, blockId: string, knownOn = ''): Promise<void> {
+  /**
+   * `knownOn`: as it stood on that day; empty for now. `unchecked`: whether figures of the lab that nobody has checked
+   * count. The block asked for last is the one that is shown, whichever answer comes last.
+   */
+  async function load(estateId: string, blockId: string, { knownOn = '', unchecked = 'out' }: { knownOn?: string; unchecked?: 'in' | 'out' } = {}): Promise<void> {
     const mine = ++asked;
     view.value = null;
-    const answer = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn } });
+    const answer = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn, unchecked: unchecked === 'in' ? 'in' : null } });
     if (mine === asked) view.value = answer;
   }
 

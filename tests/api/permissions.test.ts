@@ -180,6 +180,7 @@ const doors: Door[] = [
   door('patch', `/lots/${nobody}`, 'lots.build', 'propose'),
   door('put', `/lots/${nobody}/parts`, 'lots.build', 'propose'),
   door('post', `/lots/${nobody}/confirm`, 'lots.confirm', 'propose'),
+  door('post', `/lots/${nobody}/reopen`, 'lots.confirm'),
   door('delete', `/lots/${nobody}`, 'lots.build'),
   door('post', '/scenarios', 'lots.build', 'propose'),
   door('get', '/tanks', 'lots.see', 'read'),

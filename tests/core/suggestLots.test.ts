@@ -16,7 +16,7 @@ function zone(id: string, facts: { tonnes: number; brix: number | null; error?: 
 const tank = (id: string, volumeL: number, minimumL = 0): ChoiceTank => ({ id, volumeL, fillShare: 0.8, minimumL });
 
 function rules(changes: Partial<ChoiceRules> = {}): ChoiceRules {
-  return { together: [], targets: {}, litresPerT: { red: exactly(800), white: exactly(600) }, leastChance: 0.8, dayTonnes: null, ...changes };
+  return { together: [], targets: {}, litresPerT: { red: exactly(800), white: exactly(600) }, leastChance: 0.8, dayTonnes: null, pressTonnes: null, ...changes };
 }
 
 /** Every set of choices that shares no zone and no tank, one after the other: slow, and cannot be wrong in the same way. */
@@ -95,6 +95,17 @@ describe('suggested lots', () => {
     expect(whyLeftOut(zones[1]!, tanks, asked)).toEqual({ code: 'outsideTarget', measure: 'brix', value: 20 });
     expect(whyLeftOut(zones[2]!, tanks, asked)).toEqual({ code: 'notRead', measure: 'brix' });
     expect(whyLeftOut(zones[3]!, tanks, asked)).toEqual({ code: 'overDay', tonnes: 30, limit: 10 });
+  });
+
+  it('of white and rosé are no larger than the press takes on a day; red waits for no press', () => {
+    const zones = [zone('a', { tonnes: 4, brix: 21, wineType: 'white' }), zone('b', { tonnes: 3, brix: 21, wineType: 'white' }), zone('c', { tonnes: 9, brix: 21, wineType: 'white' }), zone('d', { tonnes: 9, brix: 24 })];
+    const tanks = [tank('T1', 40_000)];
+    const groups = (asked: ChoiceRules) => lotChoices(zones, tanks, asked).choices.map((choice) => choice.zones.join());
+    expect(groups(rules())).toEqual(['0', '0,1', '0,1,2', '0,2', '1', '1,2', '2', '3']);
+    expect(groups(rules({ dayTonnes: 20, pressTonnes: 7 }))).toEqual(['0', '0,1', '1', '3']);
+    expect(groups(rules({ dayTonnes: 20, pressTonnes: 6 }))).toEqual(['0', '1', '3']);
+    expect(whyLeftOut(zones[2]!, tanks, rules({ dayTonnes: 20, pressTonnes: 6 }))).toEqual({ code: 'overPress', tonnes: 9, limit: 6 });
+    expect(whyLeftOut(zones[3]!, tanks, rules({ dayTonnes: 20, pressTonnes: 6 }))).toEqual({ code: 'noTankLeft' });
   });
 
   it('come back in the time given, and say when they are not proved best', async () => {

@@ -2,19 +2,27 @@ import type { LotView, LotZone, LotsBoard, TankView } from '../../../shared/cont
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { isBearing } from '../../ground/blockVines.ts';
+import { peopleWhoMay } from '../../ground/peopleWhoMay.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
-import { loadBoardGround, type BoardBlock, type BoardGround } from './boardGround.ts';
+import { loadBoardGround, type BoardBlock, type BoardGround, type Then } from './boardGround.ts';
+import { lotsThen } from './lotsThen.ts';
+import { pickStops } from './pickStops.ts';
 import { usedFactors } from './usedFactors.ts';
 import { summariseLot, withoutZone, type LotShare } from './summariseLot.ts';
 import { boardConfidence, figureOf } from './zoneOutlook.ts';
 
-/** The lots of a scenario, every zone with what is free of it, and the tanks. Without a scenario: the live one of the season. */
-export async function lotsBoard(access: Access, options: { scenarioId: string | null; today: string }): Promise<LotsBoard> {
+/**
+ * The lots of a scenario, every zone with what is free of it, and the tanks. Without a scenario: the live one of the
+ * season. With `knownOn` as all of it stood and was known at the end of that day.
+ */
+export async function lotsBoard(access: Access, options: { scenarioId: string | null; today: string; knownOn?: string | null }): Promise<LotsBoard> {
   const scenario = await findScenario(access, options);
   const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
-  const tanks = await listTanks(access);
-  const ground = await loadBoardGround(access.estateId, scenario, await usedFactors(access.estateId));
+  const then = options.knownOn ? await thenOf(access.estateId, scenario.id, new Date(`${options.knownOn}T23:59:59.999Z`)) : null;
+  const tanks = then?.stood.tanks ?? (await listTanks(access));
+  const ground = await loadBoardGround(access.estateId, scenario, await usedFactors(access.estateId, then), then);
+  const lots = await withStops(access.estateId, ground.lots.map((_, index) => lotView(ground, index, tanks)), then?.until ?? null);
   return {
     scenarioId: scenario.id,
     suggestion: scenario.suggestion as LotsBoard['suggestion'],
@@ -22,9 +30,21 @@ export async function lotsBoard(access: Access, options: { scenarioId: string | 
     seasonId: scenario.seasonId,
     confidence: boardConfidence,
     zones: ground.blocks.flatMap((block) => block.zones.map((_, index) => zoneLine(ground, block, index))),
-    lots: ground.lots.map((_, index) => lotView(ground, index, tanks)),
+    lots,
     tanks,
+    mayLift: (await peopleWhoMay(undefined, access.estateId, 'restrictions.lift')).map(({ name }) => name),
+    knownOn: options.knownOn ?? null,
   };
+}
+
+async function thenOf(estateId: string, scenarioId: string, until: Date): Promise<Then> {
+  return { until, stood: await lotsThen(estateId, scenarioId, until) };
+}
+
+async function withStops(estateId: string, lots: Omit<LotView, 'stops'>[], at: Date | null): Promise<LotView[]> {
+  const dated = lots.flatMap(({ id, pickOn }) => (pickOn === null ? [] : [{ lotId: id, pickOn }]));
+  const stops = await pickStops(estateId, dated, { at });
+  return lots.map((lot) => ({ ...lot, stops: stops.get(lot.id) ?? [] }));
 }
 
 export async function findScenario(access: Access, options: { scenarioId: string | null; today: string }): Promise<Scenario> {
@@ -44,7 +64,7 @@ export async function listTanks(access: Access): Promise<TankView[]> {
 /** All lots of a board's ground, as the board shows them. */
 export async function lotViews(access: Access, ground: BoardGround): Promise<LotView[]> {
   const tanks = await listTanks(access);
-  return ground.lots.map((_, index) => lotView(ground, index, tanks));
+  return withStops(access.estateId, ground.lots.map((_, index) => lotView(ground, index, tanks)), null);
 }
 
 function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZone {
@@ -72,6 +92,7 @@ function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZon
     yieldParts: outlook.parts,
     dominating: outlook.yield.dominating,
     latest: { brix: latest('brix'), ph: latest('ph'), ta: latest('ta'), on: outlook.latestOn },
+    unchecked: outlook.unchecked,
     freeShare,
     freeTonnes: freeShare * outlook.tonnes.value,
     rows: rowsAcross(block, zone.number),
@@ -92,7 +113,7 @@ function sharesOf(block: BoardBlock, zone: number): { byLot: Map<number, number>
   return { byLot: new Map([...counts].map(([lot, count]) => [lot, count / bearing])), bearing };
 }
 
-function lotView(ground: BoardGround, index: number, tanks: TankView[]): LotView {
+function lotView(ground: BoardGround, index: number, tanks: TankView[]): Omit<LotView, 'stops'> {
   const lot = ground.lots[index]!;
   const shares = ground.blocks.flatMap((block) => lotShares(block, index));
   return {

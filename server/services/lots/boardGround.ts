@@ -9,6 +9,7 @@ import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import type { LotsThen } from './lotsThen.ts';
 import { zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
 /** A block with its live zones, what to expect of them, and which lot each vine is in. */
@@ -31,20 +32,26 @@ export interface BoardGround {
   measures: MeasureRecord[];
 }
 
-/** Loads everything that the lots of a scenario are made of: each live zoning of the season, its fruit (as known at `until`), and the lots' vines. */
-export async function loadBoardGround(estateId: string, scenario: { id: string; seasonId: string }, factors: UsedFactors, until: Date | null = null): Promise<BoardGround> {
+/** The lots as they stood at a moment. */
+export interface Then {
+  until: Date;
+  stood: LotsThen;
+}
+
+/** Loads everything that the lots of a scenario are made of: each live zoning of the season, its fruit and the lots' vines; with `then` all of it as it stood and was known. */
+export async function loadBoardGround(estateId: string, scenario: { id: string; seasonId: string }, factors: UsedFactors, then: Then | null = null): Promise<BoardGround> {
   const season = await Season.query().findOne({ estateId, id: scenario.seasonId }).throwIfNotFound();
-  const zonings = await Zoning.query().where({ estateId, seasonId: season.id, state: 'live' });
+  const zonings = await zoningsOf(estateId, season.id, then?.until ?? null);
   const zones = await Zone.query().where({ estateId }).whereIn('zoningId', zonings.map((zoning) => zoning.id)).orderBy('number').select('id', 'zoningId', 'number', 'name', 'areaM2');
   const measures = await MeasureRecord.query().where({ estateId });
-  const lots = await Lot.query().where({ estateId, scenarioId: scenario.id }).orderBy('createdAt');
-  const runs = await runsOf(estateId, scenario.id);
+  const lots = then?.stood.lots ?? (await Lot.query().where({ estateId, scenarioId: scenario.id }).orderBy('createdAt'));
+  const runs = then?.stood.runs ?? (await runsOf(estateId, scenario.id));
   const blocks = await Promise.all(
     zonings.map(async (zoning): Promise<BoardBlock> => {
       const ground = await loadBlockVines(estateId, zoning.blockId);
       const zoneOf = zonesOfVines(ground, zoning);
       const own = zones.filter((zone) => zone.zoningId === zoning.id);
-      const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id, ...(until ? { until } : {}) });
+      const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id, ...(then ? { until: then.until } : {}) });
       const outlooks = zoneOutlooks({ ground, zoneOf, zoneNumbers: own.map((zone) => zone.number), readings, measures, season, factors });
       return { ground, zoneOf, zones: own, outlooks, readings, lotOf: lotsOfVines(ground, lots, runs) };
     }),
@@ -53,7 +60,14 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
   return { season, lots, blocks, factors, measures };
 }
 
-interface Run {
+/** Zones in force, one set a block: now, or at a moment. */
+async function zoningsOf(estateId: string, seasonId: string, until: Date | null): Promise<Zoning[]> {
+  if (until === null) return Zoning.query().where({ estateId, seasonId, state: 'live' });
+  return Zoning.query().where({ estateId, seasonId }).where('publishedAt', '<=', until).distinctOn('blockId').orderBy(['blockId', { column: 'publishedAt', order: 'desc' }]);
+}
+
+/** Runs of vines of a row that are in a lot, both ends included. */
+export interface Run {
   lotId: string;
   rowId: string;
   from: number;

@@ -7,7 +7,6 @@ import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Stale, Unusable } from '../../errors.ts';
 import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
-import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
@@ -17,6 +16,7 @@ import { Zoning } from '../../models/Zoning.ts';
 import { findScenario } from './board.ts';
 import { boardOfLot, keepDecision } from './decisions.ts';
 import { runsOf } from './boardGround.ts';
+import { requireNoPickStop } from './pickStops.ts';
 
 export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
   const scenario = await findScenario(access, { scenarioId: input.scenarioId, today });
@@ -31,7 +31,7 @@ export async function createLot(access: Access, input: z.infer<typeof newLot>, t
 export async function changeLot(access: Access, lotId: string, change: z.infer<typeof lotChange>, version: number): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
-    if (change.pickOn) await requireNoPickRestriction(trx, access, lotId, change.pickOn);
+    if (change.pickOn) await requireNoPickStop(trx, access, { lotId, pickOn: change.pickOn });
     await lot.$query(trx).patch({ ...change, version: lot.version + 1 });
     await writeAudit(trx, access, { action: 'lots.change', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { name: lot.name, pickOn: lot.pickOn, tankId: lot.tankId }, after: change });
   });
@@ -44,6 +44,7 @@ export async function changeLot(access: Access, lotId: string, change: z.infer<t
 export async function setLotParts(access: Access, lotId: string, input: z.infer<typeof lotParts>, version: number): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
+    requireDraft(lot);
     await LotPart.query(trx).where({ estateId: access.estateId, lotId }).delete();
     for (const part of input.parts) await addPart(trx, access, lot, part);
     await lot.$query(trx).patch({ version: lot.version + 1 });
@@ -57,8 +58,7 @@ export async function moveZone(access: Access, input: z.infer<typeof zoneMove>):
     const from = await lockLot(trx, access, input.fromLotId, input.fromVersion);
     const to = await lockLot(trx, access, input.toLotId, input.toVersion);
     if (from.scenarioId !== to.scenarioId) throw new Unusable('otherScenario', 'These lots belong to different what-ifs. Move zones inside one.');
-    const firm = [from, to].find(({ state }) => state !== 'draft');
-    if (firm) throw new Unusable('lotStands', `The lot "${firm.name}" is confirmed; its zones stand as they are.`);
+    [from, to].forEach(requireDraft);
     const parts = await LotPart.query(trx).where({ estateId: access.estateId, lotId: from.id, zoneId: input.zoneId });
     if (parts.length === 0) throw new Unusable('notInLot', `The lot "${from.name}" holds nothing of this zone.`);
     await LotPart.query(trx).where({ estateId: access.estateId }).whereIn('id', parts.map(({ id }) => id)).patch({ lotId: to.id });
@@ -85,6 +85,12 @@ export async function addPart(trx: Transaction, access: Access, lot: Lot, part: 
   await LotRowRun.query(trx).insert(runs.map((run) => ({ estateId: access.estateId, scenarioId: lot.scenarioId, lotPartId: row.id, rowId: run.rowId, vines: vineRange(run.from, run.to) as unknown as string })));
 }
 
+/** Zones of a confirmed lot are what its notice says; those of a picked one are history. */
+function requireDraft({ name, state }: Lot): void {
+  if (state === 'confirmed') throw new Unusable('lotStands', `The lot "${name}" is confirmed, so it stands as it is. Open it again first; its notice is void from then on.`);
+  if (state === 'picked') throw new Unusable('lotStands', `The lot "${name}" has been picked, so it stands as it was.`);
+}
+
 async function requireFree(trx: Transaction, access: Access, lot: Lot, part: { runs: { rowId: string; from: number; to: number }[]; what: string }): Promise<void> {
   const taken = await runsOf(access.estateId, lot.scenarioId, trx);
   const clash = taken.find((other) => other.lotId !== lot.id && part.runs.some((run) => run.rowId === other.rowId && run.from <= other.to && other.from <= run.to));
@@ -101,7 +107,7 @@ export async function confirmLot(access: Access, lotId: string, version: number,
     const lot = await lockLot(trx, access, lotId, version);
     if (lot.pickOn === null) throw new Unusable('noPickDate', 'Set a pick date before you confirm the lot.');
     if ((await LotPart.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) === 0) throw new Unusable('emptyLot', 'Put at least one zone in the lot before you confirm it.');
-    await requireNoPickRestriction(trx, access, lotId, lot.pickOn);
+    await requireNoPickStop(trx, access, { lotId, pickOn: lot.pickOn });
     await lot.$query(trx).patch({ state: 'confirmed', confirmedBy: access.personId, confirmedAt: now, version: lot.version + 1 });
     await keepDecision(trx, access, { lotId, kind: 'confirm', shown, now });
     await writeAudit(trx, access, { action: 'lots.confirm', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, after: { pickOn: lot.pickOn } });
@@ -111,6 +117,7 @@ export async function confirmLot(access: Access, lotId: string, version: number,
 export async function deleteLot(access: Access, lotId: string, version: number): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
+    requireDraft(lot);
     await lot.$query(trx).delete();
     await writeAudit(trx, access, { action: 'lots.delete', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { wineType: lot.wineType, pickOn: lot.pickOn } });
   });
@@ -132,21 +139,8 @@ export async function changeTank(access: Access, tankId: string, change: z.infer
   });
 }
 
-async function lockLot(trx: Transaction, access: Access, lotId: string, version: number): Promise<Lot> {
+export async function lockLot(trx: Transaction, access: Access, lotId: string, version: number): Promise<Lot> {
   const lot = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).forUpdate().throwIfNotFound();
   if (lot.version !== version) throw new Stale('lotChanged', `Somebody changed the lot "${lot.name}" since you read it. Load it again and repeat the step.`, { current: lot.version });
   return lot;
-}
-
-/** A pick date inside an entry restriction or a pre-harvest interval is stopped, with the entry named. */
-export async function requireNoPickRestriction(trx: Transaction, access: Access, lotId: string, pickOn: string): Promise<void> {
-  const clash = await EntryRestriction.query(trx)
-    .where('entry_restrictions.estateId', access.estateId)
-    .whereNull('liftedAt')
-    .whereIn('blockId', LotPart.query(trx).where({ estateId: access.estateId, lotId }).select('blockId'))
-    .whereRaw('(no_pick_before > ?::date or (starts_at::date <= ?::date and ends_at > ?::date))', [pickOn, pickOn, pickOn])
-    .first();
-  if (!clash) return;
-  const until = clash.noPickBefore && clash.noPickBefore > pickOn ? clash.noPickBefore : clash.endsAt.toISOString().slice(0, 10);
-  throw new Clash('restricted', `${clash.product} (interval as typed: ${clash.labelInterval}) rules out picking before ${until} in a block of this lot. Choose a later day; label and local law come first.`, { restrictionId: clash.id });
 }

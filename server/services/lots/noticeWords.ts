@@ -11,15 +11,18 @@ export function differencesBetween(before: NoticeBody, after: NoticeBody): Notic
     .map((what) => ({ what, before: told.before[what], after: told.after[what] }));
 }
 
+/** Stands for a fact that a notice does not name. */
+const nothing = '–';
+
 function factsOf({ pickOn, fromTime, lotName, zones, tank, tonnes, note }: NoticeBody): Record<NoticeDifference['what'], string> {
   return {
     pickOn,
     fromTime,
     lotName,
     zones: zones.map((zone) => `${zone.blockName} ${zone.number}${zone.rows ? ` (${zone.rows.join(', ')})` : ''}`).join('; '),
-    tank: tank ?? '–',
-    tonnes: tonnes === null ? '–' : tonnes.value.toFixed(1),
-    note: note === '' ? '–' : note,
+    tank: tank ?? nothing,
+    tonnes: tonnes === null ? nothing : tonnes.value.toFixed(1),
+    note: note === '' ? nothing : note,
   };
 }
 
@@ -34,15 +37,16 @@ export function withoutTonnesDifferences(differences: readonly NoticeDifference[
 
 /** The notice as plain text in the reader's language: what it replaces and what changed come first. */
 export function noticeText(body: NoticeBody, how: { language: string; replacesNumber: number | null; differences: readonly NoticeDifference[] }): string {
-  const texts: Texts = noticeTexts[how.language as keyof typeof noticeTexts] ?? noticeTexts.en;
+  const texts = textsIn(how.language);
   const date = (day: string) => new Intl.DateTimeFormat(how.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
-  const shown = (what: string, value: string) => (what === 'pickOn' ? date(value) : value);
+  const tonnes = (value: number) => new Intl.NumberFormat(how.language, { minimumFractionDigits: 1, maximumFractionDigits: 1 }).format(value);
+  const shown = (what: string, value: string) => (what === 'pickOn' ? date(value) : what === 'tonnes' && value !== nothing ? `${tonnes(Number(value))} t` : value);
   const lines = [
     ...(how.replacesNumber === null ? [] : [fill(texts.replaces, { number: how.replacesNumber })]),
     ...(how.differences.length === 0 ? [] : [texts.changed, ...how.differences.map(({ what, before, after }) => `- ${fill(texts.was, { what: wordOf(texts, what), before: shown(what, before), after: shown(what, after) })}`), '']),
     fill(texts.pick, { lot: body.lotName, date: date(body.pickOn), time: body.fromTime }),
     fill(texts.zones, { zones: body.zones.map((zone) => `${zone.blockName} ${texts.zone} ${zone.number}${zone.rows ? `, ${fill(texts.rows, { rows: zone.rows.join(', ') })}` : ''}`).join('; ') }),
-    ...(body.tonnes === null ? [] : [fill(texts.tonnes, { value: body.tonnes.value.toFixed(1), half: (body.tonnes.halfWidth ?? 0).toFixed(1) })]),
+    ...(body.tonnes === null ? [] : [fill(texts.tonnes, { value: tonnes(body.tonnes.value), half: tonnes(body.tonnes.halfWidth ?? 0) })]),
     ...(body.tank === null ? [] : [fill(texts.tank, { tank: body.tank })]),
     ...(body.note === '' ? [] : [body.note]),
     '',
@@ -57,9 +61,18 @@ function wordOf(texts: Texts, what: NoticeDifference['what']): string {
 }
 
 /** Words around a notice on paper. */
-export function sheetWords(language: string): { title: string; scan: string; void: string } {
-  const texts: Texts = noticeTexts[language as keyof typeof noticeTexts] ?? noticeTexts.en;
-  return { title: texts.title, scan: texts.scan, void: texts.void };
+export function sheetWords(language: string): { title: string; scan: string; void: string; voidAlone: string } {
+  const { title, scan, void: replaced, voidAlone } = textsIn(language);
+  return { title, scan, void: replaced, voidAlone };
+}
+
+/** Sentence of a notice that was taken back without another in its place. */
+export function withdrawnWords(language: string): string {
+  return textsIn(language).withdrawn;
+}
+
+function textsIn(language: string): Texts {
+  return noticeTexts[language as keyof typeof noticeTexts] ?? noticeTexts.en;
 }
 
 export function fill(template: string, facts: Record<string, string | number>): string {

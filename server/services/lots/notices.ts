@@ -17,7 +17,7 @@ import { PickNotice } from '../../models/PickNotice.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { lotsBoard } from './board.ts';
 import { keepDecision, shownOf } from './decisions.ts';
-import { requireNoPickRestriction } from './changeLots.ts';
+import { requireNoPickStop } from './pickStops.ts';
 import { differencesBetween, fill, noticeText, sheetWords, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
 
 interface Recipient {
@@ -38,10 +38,10 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
   return PickNotice.transaction(async (trx) => {
     // Numbers run without a gap or a double: one notice at a time in an estate.
     const estate = await Estate.query(trx).findById(estateId).forUpdate().throwIfNotFound();
-    await requireNoPickRestriction(trx, access, lotId, body.pickOn);
-    const before = await PickNotice.query(trx).where({ estateId, lotId }).whereNull('voidAt').orderBy('number', 'desc').first();
+    await requireNoPickStop(trx, access, { lotId, pickOn: body.pickOn });
+    const before = await PickNotice.query(trx).where({ estateId, lotId }).orderBy('number', 'desc').first();
     const newest = await PickNotice.query(trx).where({ estateId }).max('number as number').first();
-    if (before) await before.$query(trx).patch({ voidAt: options.now });
+    if (before?.voidAt === null) await before.$query(trx).patch({ voidAt: options.now });
     const notice = await PickNotice.query(trx).insert({ estateId, lotId, number: (newest?.number ?? 0) + 1, replacesNumber: before?.number ?? null, body, sentBy: access.personId, sentAt: options.now });
     await keepDecision(trx, access, { lotId, kind: 'notice', shown: shownOf(board, lotId), now: options.now });
     await NoticeReader.query(trx).insert(recipients.map(({ person }) => ({ noticeId: notice.id, personId: person.id })));
@@ -140,11 +140,13 @@ export async function printNotice(access: Access, noticeId: string, options: { p
   const replacedBy = await replacementOf(notice);
   const body = notice.body as NoticeBody;
   const texts = sheetWords(person.language);
-  const text = noticeText(seesLots ? body : withoutTonnes(body), { language: person.language, replacesNumber: notice.replacesNumber, differences: [] });
+  const before = notice.replacesNumber === null ? null : await PickNotice.query().findOne({ estateId: access.estateId, number: notice.replacesNumber });
+  const differences = before ? differencesBetween(before.body as NoticeBody, body) : [];
+  const text = noticeText(seesLots ? body : withoutTonnes(body), { language: person.language, replacesNumber: notice.replacesNumber, differences: seesLots ? differences : withoutTonnesDifferences(differences) });
   const title = fill(texts.title, { number: notice.number });
   return {
     name: `${title}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'),
-    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: notice.voidAt === null ? null : fill(texts.void, { number: replacedBy ?? '' }), now: options.now }),
+    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: notice.voidAt === null ? null : replacedBy === null ? texts.voidAlone : fill(texts.void, { number: replacedBy }), now: options.now }),
   };
 }
 
@@ -159,8 +161,9 @@ export async function noticeState(code: string): Promise<NoticeState> {
 /** Number of the notice in force for the same lot, followed through all replacements; null while this one holds. */
 async function replacementOf(notice: PickNotice): Promise<number | null> {
   if (notice.voidAt === null) return null;
-  const newest = await PickNotice.query().where({ estateId: notice.estateId, lotId: notice.lotId }).orderBy('number', 'desc').first();
-  return newest && newest.number !== notice.number ? newest.number : null;
+  if (notice.lotId === null) return null;
+  const inForce = await PickNotice.query().findOne({ estateId: notice.estateId, lotId: notice.lotId }).whereNull('voidAt');
+  return inForce?.number ?? null;
 }
 
 /** Notes that the person has read a notice addressed to them; repeating it keeps the first time. */

@@ -1,12 +1,13 @@
-import type { ChoiceRules, ChoiceTank, ChoiceZone, LotChoice } from '../../../shared/cellar/lotChoices.ts';
+import { isPressed, type ChoiceRules, type ChoiceTank, type ChoiceZone, type LotChoice } from '../../../shared/cellar/lotChoices.ts';
 import { whyLeftOut, whyPlaced } from '../../../shared/cellar/lotReasons.ts';
-import { pickDays } from '../../../shared/cellar/pickDays.ts';
+import { pickDays, type DayRoom } from '../../../shared/cellar/pickDays.ts';
 import type { NewSuggestion, SuggestionView } from '../../../shared/contracts/suggestions.ts';
 import { wineTypes, type WineType } from '../../../shared/contracts/lots.ts';
 import type { Access } from '../../access/access.ts';
 import { Unusable } from '../../errors.ts';
 import { isBearing } from '../../ground/blockVines.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Lot } from '../../models/Lot.ts';
 import { Scenario } from '../../models/Scenario.ts';
@@ -39,7 +40,7 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const factors = await usedFactors(access.estateId);
   const ground = await loadBoardGround(access.estateId, live, factors);
   const kept = ground.lots.filter((lot) => !asked.startOver || lot.state !== 'draft');
-  const zones = freeZones(ground, { kept, asked, earliest: await earliestDays(access.estateId) });
+  const zones = freeZones(ground, { kept, asked, earliest: await earliestDays(access.estateId, asked.firstDay) });
   const tanks = await freeTanks(access.estateId, { kept, asked });
   if (zones.length === 0) throw new Unusable('nothingFree', 'Every zone is in a lot already. Ask to start over, or take zones out of their lots first.');
   if (tanks.length === 0) throw new Unusable('noTankFree', 'No tank is free. Add tanks, or choose others.');
@@ -47,7 +48,7 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const rules = rulesOf(asked, { factors, room });
   const answer = await runCompute<SuggestAnswer>('suggestLots', { zones: zones.map(plain), tanks: tanks.map(({ name: _name, ...tank }) => tank), rules, limitSeconds } satisfies SuggestInput, { lane: 'quick' });
   const lots = answer.lots.map((lot) => ({ lot, own: lot.zones.map((index) => zones[index]!) }));
-  const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: own[0]!.wineType !== 'red', earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
+  const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: isPressed(own[0]!), earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));
   const placed = new Set(answer.lots.flatMap((lot) => lot.zones));
   const suggestion: SuggestionView = {
@@ -107,10 +108,21 @@ function freeZones(ground: BoardGround, how: { kept: readonly Lot[]; asked: NewS
   );
 }
 
-/** First day each block may be picked by the intervals that people entered. */
-async function earliestDays(estateId: string): Promise<Map<string, string>> {
-  const rows = await EntryRestriction.query().where({ estateId }).whereNull('liftedAt').whereNotNull('noPickBefore').orderBy('noPickBefore');
-  return new Map(rows.map(({ blockId, noPickBefore }) => [blockId, noPickBefore!]));
+/** First day each block may be picked by the intervals that people entered; one that names rows holds the whole block here. */
+async function earliestDays(estateId: string, firstDay: string): Promise<Map<string, string>> {
+  const { timeZone } = await Estate.query().findById(estateId).throwIfNotFound();
+  const rows = (await EntryRestriction.query()
+    .where({ estateId })
+    .whereNull('liftedAt')
+    .where('endsAt', '>', firstDay)
+    .orWhere((own) => own.where({ estateId }).whereNull('liftedAt').where('noPickBefore', '>', firstDay))
+    .select('blockId', 'noPickBefore', EntryRestriction.raw("to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') as \"openOn\"", [timeZone]))) as unknown as { blockId: string; noPickBefore: string | null; openOn: string }[];
+  const first = new Map<string, string>();
+  for (const { blockId, noPickBefore, openOn } of rows) {
+    const day = noPickBefore !== null && noPickBefore > openOn ? noPickBefore : openOn;
+    if (day > (first.get(blockId) ?? '')) first.set(blockId, day);
+  }
+  return first;
 }
 
 async function freeTanks(estateId: string, { kept, asked }: { kept: readonly Lot[]; asked: NewSuggestion }): Promise<(ChoiceTank & { name: string })[]> {
@@ -120,15 +132,17 @@ async function freeTanks(estateId: string, { kept, asked }: { kept: readonly Lot
     .map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, volumeL: litres, fillShare: workingFill, minimumL: litres * minimumFill }));
 }
 
-function rulesOf(asked: NewSuggestion, { factors, room }: { factors: UsedFactors; room: { pickT: number | null }[] }): ChoiceRules {
-  const limits = room.map(({ pickT }) => pickT ?? Infinity);
-  const most = Math.max(...limits);
+function rulesOf(asked: NewSuggestion, { factors, room }: { factors: UsedFactors; room: readonly DayRoom[] }): ChoiceRules {
+  // The roomiest day decides what can be a lot at all; `pickDays` then finds the day.
+  const most = Math.max(...room.map(({ pickT }) => pickT ?? Infinity));
+  const mostPressed = Math.max(...room.map(({ pickT, pressT }) => Math.min(pickT ?? Infinity, pressT ?? Infinity)));
   return {
     together: asked.together,
     targets: asked.targets,
     litresPerT: Object.fromEntries(wineTypes.map((wine) => [wine, mustPerTonne(wine, factors)])),
     leastChance: asked.leastChance,
     dayTonnes: Number.isFinite(most) ? most : null,
+    pressTonnes: Number.isFinite(mostPressed) ? mostPressed : null,
   };
 }
 

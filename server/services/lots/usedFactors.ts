@@ -6,7 +6,7 @@ import { FactorSwitch } from '../../models/FactorSwitch.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { isBearing } from '../../ground/blockVines.ts';
-import { loadBoardGround, type BoardBlock, type BoardGround } from './boardGround.ts';
+import { loadBoardGround, type BoardBlock, type BoardGround, type Then } from './boardGround.ts';
 import { assumedLosses, boardConfidence, noFactors, type UsedFactors } from './zoneOutlook.ts';
 
 /** What one lot says of a factor. */
@@ -18,11 +18,11 @@ export interface FactorCase {
   value: number;
 }
 
-/** The factors that are switched on, learned from every season's lots. Nothing is loaded while none is on. */
-export async function usedFactors(estateId: string): Promise<UsedFactors> {
-  const switches = await FactorSwitch.query().where({ estateId, isOn: true });
+/** The factors that are switched on (at a moment: that were), learned from every season's lots. Nothing is loaded while none is on. */
+export async function usedFactors(estateId: string, then: Then | null = null): Promise<UsedFactors> {
+  const switches = then ? then.stood.switches.filter(({ isOn }) => isOn) : await FactorSwitch.query().where({ estateId, isOn: true });
   if (switches.length === 0) return noFactors;
-  const learned = learnedOf(await factorCases(estateId));
+  const learned = learnedOf(await factorCases(estateId, then?.until ?? null));
   const on = (kind: FactorKind) => new Map([...learned].flatMap(([key, factor]) => (factor.n >= LOTS_NEEDED && switches.some((one) => one.kind === kind && key === keyOf(kind, one.about)) ? [[key.slice(kind.length + 1), factor] as const] : [])));
   return { growth: on('growth'), losses: on('losses'), mustL: on('mustL'), wineL: on('wineL'), tankOffset: on('tankOffset') };
 }
@@ -33,9 +33,10 @@ export function learnedOf(cases: readonly FactorCase[]): Map<string, LearnedFact
   return new Map([...groupBy(cases, (one) => keyOf(one.kind, one.about))].map(([key, group]) => [key, learnFactor(group.map(({ value }) => value), boardConfidence)!]));
 }
 
-/** Every lot in force of every season, with what it says of each factor. */
-export async function factorCases(estateId: string): Promise<FactorCase[]> {
-  const [results, tickets] = await Promise.all([CellarResult.query().where({ estateId }).orderBy('enteredAt'), ScaleTicket.query().where({ estateId })]);
+/** Every lot in force of every season, with what it says of each factor; `until`: by what had been entered then. */
+export async function factorCases(estateId: string, until: Date | null = null): Promise<FactorCase[]> {
+  const results = (await CellarResult.query().where({ estateId }).orderBy('enteredAt')).filter(({ enteredAt }) => until === null || enteredAt <= until);
+  const tickets = (await ScaleTicket.query().where({ estateId })).filter(({ enteredAt }) => until === null || enteredAt <= until);
   if (results.length === 0 && tickets.length === 0) return [];
   const newest = new Map(results.map((result) => [result.lotId, result]));
   const scenarios = await Scenario.query().where({ estateId, isLive: true });

@@ -4,7 +4,7 @@ import type { Figure, LotZone } from '../../../shared/contracts/lots.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import { criticalT } from '../../../shared/sampling/quantiles.ts';
 import { isBearing, type BlockVines } from '../../ground/blockVines.ts';
-import type { ZonedReading } from '../../ground/zonedReadings.ts';
+import { isFirm, type ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import type { Season } from '../../models/Season.ts';
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
@@ -40,13 +40,15 @@ export interface ZoneOutlook {
   parts: LotZone['yieldParts'];
   latest: Record<'brix' | 'ph' | 'ta', VisitMean | null>;
   latestOn: string | null;
+  /** Figures of fruit that nobody has checked yet; they count in nothing here. */
+  unchecked: number;
 }
 
 /** What to expect of each zone of a block: tonnes with their parts, and the newest composition. */
 export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zoneNumbers: number[]; readings: ZonedReading[]; measures: MeasureRecord[]; season: Season; factors: UsedFactors }): ZoneOutlook[] {
   const { ground, zoneOf, readings, season } = input;
   const measureOf = (code: string) => input.measures.find((measure) => measure.code === code)!;
-  const counted = readings.filter((reading) => reading.excludedReason === null);
+  const counted = readings.filter(isFirm);
   return input.zoneNumbers.map((zone) => {
     const own = counted.filter((reading) => reading.zone === zone);
     const indexes = [...zoneOf.keys()].filter((vine) => zoneOf[vine] === zone);
@@ -69,6 +71,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
       confidence: boardConfidence,
       growthIsAssumed: growth === 'assumed',
     });
+    const unchecked = readings.filter((reading) => reading.zone === zone && reading.excludedReason === null && !isFirm(reading)).length;
     const latest = { brix: newest('brix'), ph: newest('ph'), ta: newest('ta') };
     return {
       zone,
@@ -79,6 +82,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
       tonnes: { value: estimate.tonnes, standardError: Math.max(estimate.standardErrorT, estimate.halfWidthT / criticalT(boardConfidence, Infinity)), df: Infinity },
       parts: estimate.parts.map(({ part, share }) => ({ part, share, kind: parts.kind(part), value: part === 'vines' ? bearing : parts.value(part), n: parts.n(part) })),
       latest,
+      unchecked,
       latestOn: Object.values(latest).reduce<string | null>((newestDay, mean) => (mean && (newestDay === null || mean.visit > newestDay) ? mean.visit : newestDay), null),
     };
   });

@@ -7,12 +7,12 @@ import { loadingChange } from '../../../shared/ripening/sugarPerBerry.ts';
 import { visitFlags } from '../../../shared/ripening/visitFlags.ts';
 import { heatSince, weatherBefore } from '../../../shared/ripening/visitWeather.ts';
 import type { WeatherDay } from '../../../shared/ripening/weatherTable.ts';
-import { fitTrend, type Trend, type VisitPoint } from '../../../shared/ripening/trend.ts';
+import { fitTrend, type Trend } from '../../../shared/ripening/trend.ts';
 import { changeBetween, changeOfSameVines, type Change } from '../../../shared/sampling/change.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
-import type { ZonedReading } from '../../ground/zonedReadings.ts';
+import { isFirm, type ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
 import { Zoning } from '../../models/Zoning.ts';
@@ -28,12 +28,15 @@ const leastPairs = 3;
 
 /**
  * How each zone of a block ripens by the zones in force: series, change in words, trend and a forecast that carries its
- * record. With `knownOn` as it stood at the end of that day: its zones, and what had been received by then.
+ * record. With `knownOn` as it stood at the end of that day: its zones, and what had been received by then. Figures of the
+ * lab that nobody has checked stay out unless they are asked for; how many there are is told.
  */
-export async function blockRipening(access: Access, blockId: string, options: { today: string; knownOn?: string | null }): Promise<RipeningView> {
+export async function blockRipening(access: Access, blockId: string, options: { today: string; knownOn?: string | null; unchecked?: 'out' | 'in' }): Promise<RipeningView> {
   const until = options.knownOn ? new Date(`${options.knownOn}T23:59:59.999Z`) : null;
   const zoning = await zoningThen(access.estateId, blockId, until);
-  const loaded = await loadZoneReadings(access, zoning.id, until ? { until } : {});
+  const all = await loadZoneReadings(access, zoning.id, until ? { until } : {});
+  const basis = options.unchecked ?? 'out';
+  const loaded = basis === 'in' ? all : { ...all, readings: all.readings.filter(({ state }) => state !== 'provisional') };
   const results = viewResults(loaded);
   const weather = await weatherUntil(access.estateId, until);
   const made = loaded.measures.flatMap((measure) =>
@@ -44,6 +47,7 @@ export async function blockRipening(access: Access, blockId: string, options: { 
     series: made.map(({ series }) => series),
     record: recordsOf(made),
     knownOn: options.knownOn ?? null,
+    unchecked: { basis, n: all.readings.filter((reading) => reading.zone > 0 && reading.excludedReason === null && !isFirm(reading)).length },
     conditions: results.visits.map(({ on }) => conditionsOf(on, loaded.readings, weather)),
     heat: heatSince(weather, { south: loaded.ground.block.epsg >= firstSouthernZone, until: options.knownOn ?? options.today }),
     loading: results.zones.flatMap((zone) => loadingOf(zone.number, results) ?? []),
@@ -94,7 +98,9 @@ function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneRes
   const own = facts.values.filter((value) => value.zone === facts.zone && value.measure === measure.code).sort((a, b) => a.visit.localeCompare(b.visit));
   if (own.length === 0) return null;
   const readings = facts.readings.filter((reading) => reading.zone === facts.zone && reading.measureCode === measure.code && reading.excludedReason === null);
-  const points = own.map((value): VisitPoint => ({ day: dayOf(value.visit), value: value.mean }));
+  const taken = own.map((value) => ({ day: dayOf(value.visit), value: value.mean, protocol: protocolOf(readings, value.visit) }));
+  // Bags of berries and single vines need not read alike: the line is drawn through visits taken as the newest was.
+  const points = taken.filter(({ protocol }) => protocol === taken.at(-1)!.protocol);
   const options = { confidence: measure.confidence, resolution: 10 ** -measure.decimals };
   const trend = fitTrend(points, options);
   const bend = findBend(points, measure.confidence);
@@ -102,15 +108,22 @@ function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneRes
     series: {
       zone: facts.zone,
       measure: measure.code,
-      points: own.map((value) => ({ visit: value.visit, day: dayOf(value.visit), value: value.mean, halfWidth: value.halfWidth, n: value.n })),
+      points: own.map((value) => ({ visit: value.visit, day: dayOf(value.visit), value: value.mean, halfWidth: value.halfWidth, n: value.n, provisional: value.provisional, isFinal: value.isFinal })),
       change: changeSince(own, readings),
       trend: trend.kind === 'trend' ? { ...trend, rSquared: Number.isNaN(trend.rSquared) ? null : trend.rSquared } : trend,
       bend: bend.kind === 'bend' ? bend.word : null,
       forecast: trend.kind === 'trend' ? band(trend) : [],
+      otherWay: taken.length - points.length,
       sd: own.at(-1)!.sd,
     },
     steps: backTestSteps(points, options),
   };
+}
+
+/** How most of a visit's figures were taken. */
+function protocolOf(readings: readonly ZonedReading[], visit: string): 'bags' | 'vines' {
+  const own = readings.filter((reading) => reading.visit === visit);
+  return own.filter(({ vineKey }) => vineKey.startsWith('bag ')).length * 2 > own.length ? 'bags' : 'vines';
 }
 
 /** From the visit before to the newest; paired when mostly the same vines were read, else between two independent means. */

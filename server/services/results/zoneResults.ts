@@ -110,6 +110,7 @@ function resultOfVisit(measure: MeasureRecord, readings: ZonedReading[], bearing
     enough: missing?.enough ?? false,
     more: missing?.more ?? null,
     provisional: counted.filter((reading) => reading.state === 'provisional').length,
+    isFinal: counted.every((reading) => reading.state === 'final'),
     leftOut: readings.length - counted.length,
   };
 }

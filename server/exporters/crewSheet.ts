@@ -4,13 +4,15 @@ import type { FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { restrictionsAt } from '../../shared/field/entry.ts';
 import { measureWords } from './measureWords.ts';
 import { drawSheetStrip } from './sheetStrip.ts';
-import { sheetTexts, type SheetLanguage } from './sheetTexts.ts';
+import { paperLocale, sheetTexts, type SheetLanguage } from './sheetTexts.ts';
 
 /** One person's walk on paper, in black and white. */
 export interface SheetPart {
   round: FieldRound;
   person: string;
   language: SheetLanguage;
+  /** The person's other rounds of the day, in the order they were sent. */
+  alsoToday?: readonly { block: string; vines: number }[];
 }
 
 export interface SheetOptions {
@@ -20,6 +22,7 @@ export interface SheetOptions {
 }
 
 type Texts = (typeof sheetTexts)[SheetLanguage];
+const sizeOf = ({ paper }: Pick<SheetOptions, 'paper'>) => (paper === 'a4' ? 'A4' : 'LETTER');
 
 const edge = 36;
 const lineHeight = 30;
@@ -27,7 +30,7 @@ const stripHeight = 132;
 
 /** The walks of a round as PDF: a page run a person, vines in walking order with large boxes, safety card and QR to the round. */
 export async function crewSheet(parts: readonly SheetPart[], options: SheetOptions): Promise<Buffer> {
-  const pdf = new PDFDocument({ size: options.paper === 'a4' ? 'A4' : 'LETTER', margin: edge, autoFirstPage: false, info: { Title: parts[0] ? `${parts[0].round.blockName} ${parts[0].round.onDate}` : 'Sheet', Creator: 'Patchrow' } });
+  const pdf = new PDFDocument({ size: sizeOf(options), margin: edge, autoFirstPage: false, info: { Title: parts[0] ? `${parts[0].round.blockName} ${parts[0].round.onDate}` : 'Sheet', Creator: 'Patchrow' } });
   const chunks: Buffer[] = [];
   pdf.on('data', (chunk: Buffer) => chunks.push(chunk));
   const ended = new Promise<void>((resolve) => pdf.on('end', resolve));
@@ -41,7 +44,9 @@ export async function crewSheet(parts: readonly SheetPart[], options: SheetOptio
 function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[part.language];
   let page = 1;
-  pdf.addPage();
+  const layout = isWide(part, options) ? 'landscape' : 'portrait';
+  const newPage = () => pdf.addPage({ size: sizeOf(options), margin: edge, layout });
+  newPage();
   drawFoot(pdf, part, page);
   drawHead(pdf, part, options);
   const { startPostColour, endPostColour } = part.round;
@@ -51,7 +56,7 @@ function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOption
   let y = drawTableHead(pdf, columns, { texts, y: strip.y + stripHeight + 8 });
   for (const stop of part.round.stops) {
     if (y + lineHeight > pdf.page.height - edge - 16) {
-      pdf.addPage();
+      newPage();
       drawFoot(pdf, part, ++page);
       y = drawTableHead(pdf, columns, { texts, y: edge });
     }
@@ -65,9 +70,9 @@ function drawFoot(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.font('Helvetica').fontSize(8).text(`${round.blockName}, ${person}. ${sheetTexts[language].page} ${page}`, edge, pdf.page.height - edge - 9, { lineBreak: false });
 }
 
-function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
+function drawHead(pdf: PDFKit.PDFDocument, { round, person, language, alsoToday = [] }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[language];
-  const day = new Intl.DateTimeFormat(language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(`${round.onDate}T12:00:00Z`));
+  const day = new Intl.DateTimeFormat(paperLocale(language), { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(`${round.onDate}T12:00:00Z`));
   const side = 92;
   const width = pdf.page.width - 2 * edge - side - 12;
   pdf.image(code, pdf.page.width - edge - side, edge, { width: side });
@@ -76,6 +81,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.fontSize(12).text(day, { width });
   pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}. ${texts.start}: ${round.gate || '-'}`, { width });
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
+  if (alsoToday.length > 0) pdf.text(`${texts.alsoToday}: ${alsoToday.map(({ block, vines }) => `${block}, ${vines} ${texts.vines}`).join('; ')}`, { width });
   if (round.notes) pdf.text(round.notes, { width });
   const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}: ${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
   if (handfuls.length > 0) pdf.text(`${texts.ofEach}: ${handfuls.join('; ')}`, { width });
@@ -91,7 +97,7 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   pdf.y += 4;
   const [closed] = restrictionsAt(round.restrictions, { at: `${round.onDate}T12:00:00Z`, rowIds: round.stops.map(({ rowId }) => rowId) });
   if (closed) {
-    const until = new Intl.DateTimeFormat(language, { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(closed.endsAt));
+    const until = new Intl.DateTimeFormat(paperLocale(language), { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(closed.endsAt));
     pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${until} (${closed.product}, ${closed.setBy})`, edge, pdf.y, { width });
   } else pdf.font('Helvetica').fontSize(9).text(texts.noRestriction, edge, pdf.y, { width });
   pdf.font('Helvetica').fontSize(9).text(texts.law, { width });
@@ -110,7 +116,35 @@ interface Column {
   bold?: boolean;
 }
 
-function columnsOf(pdf: PDFKit.PDFDocument, { round, language }: SheetPart): Column[] {
+/** A box narrower than this is no box for a hand that wears a glove. */
+const leastBox = 42;
+const fixedWidth = 344;
+
+/** Many measures need the long side of the paper. */
+function isWide(part: SheetPart, options: Pick<SheetOptions, 'paper'>): boolean {
+  const portrait = options.paper === 'a4' ? 595 : 612;
+  return (portrait - 2 * edge - fixedWidth) / boxesOf(part).reduce((sum, { shares }) => sum + shares, 0) < leastBox;
+}
+
+interface Box {
+  /** Room it takes beside the others. */
+  shares: number;
+  head: (texts: Texts) => string;
+  box: (stop: WalkStop) => boolean;
+}
+
+/** A box for each measure that is read at the vine; what goes to the laboratory goes into a bag, whose label is written down. */
+function boxesOf({ round, language }: SheetPart): Box[] {
+  const laboratory = round.measures.filter(({ measuredIn }) => measuredIn === 'lab');
+  const field = round.measures.filter(({ measuredIn }) => measuredIn === 'field');
+  const goesToLab = (stop: WalkStop) => laboratory.some(({ code }) => stop.measures.includes(code));
+  // With nothing to read at the vine somebody may still carry an instrument.
+  const read = (field.length > 0 ? field : laboratory).map((measure): Box => ({ shares: 1, head: () => headOf(measure, language), box: (stop) => stop.measures.includes(measure.code) }));
+  const named = laboratory.map(({ code, name }) => measureWords[language]?.[code] ?? (name || code)).join(', ');
+  return laboratory.length > 0 ? [...read, { shares: 1.6, head: ({ bag }) => `${bag}: ${named}`, box: goesToLab }] : read;
+}
+
+function columnsOf(pdf: PDFKit.PDFDocument, part: SheetPart): Column[] {
   const fixed: Omit<Column, 'x'>[] = [
     { width: 26, head: () => '', text: ({ number }) => String(number) },
     { width: 58, head: ({ row }) => row, text: ({ rowLabel, rowLabelWas }) => (rowLabelWas ? `${rowLabel} (${rowLabelWas})` : rowLabel), bold: true },
@@ -120,9 +154,9 @@ function columnsOf(pdf: PDFKit.PDFDocument, { round, language }: SheetPart): Col
     { width: 34, head: ({ zone }) => zone, text: ({ zone }) => String(zone) },
     { width: 62, head: ({ reserve }) => reserve, text: ({ reserve }) => (reserve ? `${reserve.rowLabel} / ${reserve.vineNumber}` : '-') },
   ];
-  const measures = round.measures.slice(0, 4);
-  const left = pdf.page.width - 2 * edge - fixed.reduce((sum, { width }) => sum + width, 0);
-  const boxes = measures.map((measure): Omit<Column, 'x'> => ({ width: left / measures.length, head: () => headOf(measure, language), text: () => '', box: (stop) => stop.measures.includes(measure.code) }));
+  const wanted = boxesOf(part);
+  const share = (pdf.page.width - 2 * edge - fixedWidth) / wanted.reduce((sum, { shares }) => sum + shares, 0);
+  const boxes = wanted.map(({ shares, head, box }): Omit<Column, 'x'> => ({ width: shares * share, head, text: () => '', box }));
   let x = edge;
   return [...fixed, ...boxes].map((column) => {
     const placed = { ...column, x };

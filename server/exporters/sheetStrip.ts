@@ -45,13 +45,23 @@ export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place
     if (visited.has(row.id) && (pitch >= 8 || index % Math.ceil(10 / pitch) === 0)) pdf.fillColor('black').fontSize(6.5).text(row.label, x - 12, bottom + 3, { width: 24, align: 'center', lineBreak: false });
   });
   const indexOf = new Map(rows.map((row, index) => [row.id, index]));
+  const placed: { x: number; y: number }[] = [];
   for (const stop of stops) {
     const index = indexOf.get(stop.rowId);
     if (index === undefined) continue;
     const row = rows[index]!;
-    drawStopMark(pdf, String(stop.number), { x: left + (index + 0.5) * pitch, y: bottom - heightOf(stop.ordinal - row.firstOrdinal + 0.5) });
+    const mark = freePlace(placed, { x: left + (index + 0.5) * pitch, y: bottom - heightOf(stop.ordinal - row.firstOrdinal + 0.5) });
+    placed.push(mark);
+    drawStopMark(pdf, String(stop.number), mark);
   }
   pdf.fillColor('black').strokeColor('black');
+}
+
+/** Beside its vine when another mark is there already: a number that is covered is a vine that is forgotten. */
+function freePlace(placed: readonly { x: number; y: number }[], at: { x: number; y: number }): { x: number; y: number } {
+  const width = 11;
+  const steps = [0, 1, -1, 2, -2, 3, -3].map((step) => ({ x: at.x + step * width, y: at.y }));
+  return steps.find((place) => placed.every(({ x, y }) => Math.hypot(x - place.x, y - place.y) >= width)) ?? at;
 }
 
 /** Light enough that a number on it reads, different enough that neighbours in a photocopy do. */

@@ -2,7 +2,6 @@ import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
 import type { estateChange, EstateFactsView, NewEstate, SeasonChange } from '../../shared/contracts/estate.ts';
-import type { MeasureChange, MeasureView } from '../../shared/contracts/measures.ts';
 import type { InvitationView, newInvitation, PersonView, rolesChange } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
 
@@ -69,8 +68,6 @@ export const usePeopleStore = defineStore('people', () => {
   const changeEstate = (estateId: string, change: z.input<typeof estateChange>) => http.patch(`/api/estates/${estateId}`, change);
   const changeSeason = (estateId: string, seasonId: string, change: SeasonChange) => http.patch(`/api/estates/${estateId}/seasons/${seasonId}`, change);
   const makeEstate = (estate: NewEstate) => http.post<{ id: string }>('/api/estates', estate);
-  const measures = async (estateId: string) => (await http.get<Listed<MeasureView>>(`/api/estates/${estateId}/measures`)).items;
-  const changeMeasure = (estateId: string, measureId: string, change: MeasureChange) => http.patch<MeasureView>(`/api/estates/${estateId}/measures/${measureId}`, change);
 
-  return { people, invitations, load, invite, resend, revoke, setRoles, audit, mail, facts, changeEstate, changeSeason, makeEstate, measures, changeMeasure };
+  return { people, invitations, load, invite, resend, revoke, setRoles, audit, mail, facts, changeEstate, changeSeason, makeEstate };
 });

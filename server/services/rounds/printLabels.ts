@@ -7,6 +7,7 @@ import { Missing, Unusable } from '../../errors.ts';
 import { labelSheet, type LabelPaper, type PrintedLabel } from '../../exporters/labelSheet.ts';
 import { labelTexts, type LabelLanguage } from '../../exporters/labelTexts.ts';
 import { measureWords } from '../../exporters/measureWords.ts';
+import { paperLocale } from '../../exporters/sheetTexts.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Label } from '../../models/Label.ts';
@@ -67,7 +68,7 @@ const fileName = (words: string) => `${words}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'
 async function wantedOf(access: Access, { id, onDate }: Round, how: { per: BagsPer; language: LabelLanguage; now: Date; person: string }): Promise<Wanted[]> {
   const field = await fieldRound(access, id, how.now);
   const zoneIds = new Map((await Target.query().where({ estateId: access.estateId, planId: field.planId }).select('id', 'zoneId')).map((target) => [target.id, target.zoneId]));
-  const date = new Intl.DateTimeFormat(how.language, { timeZone: 'UTC', day: 'numeric', month: 'short', year: 'numeric' }).format(new Date(`${onDate}T12:00:00Z`));
+  const date = new Intl.DateTimeFormat(paperLocale(how.language), { timeZone: 'UTC', day: 'numeric', month: 'short', year: 'numeric' }).format(new Date(`${onDate}T12:00:00Z`));
   const laboratory = new Set(field.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code }) => code));
   const stops = field.stops.map((stop) => ({ ...stop, measures: stop.measures.filter((code) => laboratory.has(code)) })).filter(({ measures }) => measures.length > 0);
   const seen = new Set<number>();

@@ -1,29 +1,34 @@
 import type { BlockRowView } from '../../../shared/contracts/rows.ts';
 
+/** How a start is chosen: the block's own gate, a post of a row, or a place tapped on the map. */
+export const walkStarts = ['recorded', 'rowEnd', 'place'] as const;
+export type WalkStart = (typeof walkStarts)[number];
+
 export interface WalkSettings {
+  readonly from: WalkStart;
   /** "lon,lat", or null for the block's own gate. */
   readonly gate: string | null;
   readonly end: 'gate' | 'anywhere';
   readonly people: number;
 }
 
-/** A place a walk can begin at: the block's own gate, or a post at one of its corners. */
-export interface WalkGate {
-  readonly kind: 'recorded' | 'start' | 'end';
-  readonly rowLabel: string;
-  readonly at: string | null;
+/** A row with its two posts as starts of a walk. */
+export interface RowEnds {
+  readonly rowId: string;
+  readonly label: string;
+  readonly start: string;
+  readonly end: string;
 }
 
-export function walkGates(rows: readonly BlockRowView[]): WalkGate[] {
-  const corners = [rows[0], ...(rows.length > 1 ? [rows.at(-1)] : [])].flatMap((row): WalkGate[] => {
-    const [first, last] = [row?.pieces[0], row?.pieces.at(-1)];
-    if (!row || !first || !last) return [];
-    return [{ kind: 'start', rowLabel: row.label, at: textOf(first.from) }, { kind: 'end', rowLabel: row.label, at: textOf(last.to) }];
+export function rowEnds(rows: readonly BlockRowView[]): RowEnds[] {
+  return rows.flatMap((row): RowEnds[] => {
+    const [first, last] = [row.pieces[0], row.pieces.at(-1)];
+    return first && last ? [{ rowId: row.id, label: row.label, start: placeText(first.from), end: placeText(last.to) }] : [];
   });
-  return [{ kind: 'recorded', rowLabel: '', at: null }, ...corners];
 }
 
-const textOf = ([lon, lat]: readonly [number, number]) => `${lon.toFixed(7)},${lat.toFixed(7)}`;
+/** Longitude and latitude as a walk is asked for. */
+export const placeText = ([lon, lat]: readonly [number, number]) => `${lon.toFixed(7)},${lat.toFixed(7)}`;
 
 /** The same as longitude and latitude. */
 export function gatePlace(gate: string | null): [number, number] | null {

@@ -1,0 +1,65 @@
+import { describe, expect, it } from 'vitest';
+import type { FieldMeasure, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
+import { crewSheet, type SheetPart } from '../../server/exporters/crewSheet.ts';
+import { readPdf } from './pdfText.ts';
+
+const measure = (code: string, measuredIn: 'field' | 'lab', unit = 'g'): FieldMeasure => ({ code, name: '', unit, decimals: 1, minimum: 0, maximum: 100, margin: 1, marginKind: 'absolute', confidence: 0.95, skewed: false, measuredIn });
+const measures = [measure('clusterCount', 'field', 'clusters'), measure('brix', 'lab', '°Brix'), measure('ph', 'lab', 'pH'), measure('clusterWeight', 'field'), measure('berryWeight', 'field')];
+const stop = (number: number, asked: string[]): WalkStop => ({
+  targetId: `t${number}`, number, rowId: 'r3', rowLabel: '3', rowLabelWas: null, ordinal: number, vineNumber: number, zone: 1, drawOrder: number, enterBy: 'start', heading: 'toEnd', ahead: number, aheadFrom: 'entry', opensZone: number === 1, measures: asked,
+  reserve: { rowId: 'r3', rowLabel: '3', ordinal: number + 40, vineNumber: number + 40 },
+});
+function round(stops: WalkStop[], asked = measures): FieldRound {
+  return {
+    id: '', planId: '', planName: 'Plan', blockId: '', blockName: 'Marl', estateName: 'Estate', onDate: '2026-08-20', state: 'sent', gate: 'North gate', notes: '', startPostColour: 'red', endPostColour: 'blue', vineOneEnd: 'start',
+    people: [], zones: [{ number: 1, name: 'Upper + Lower', colour: null, vines: 100, targets: stops.length }], measures: asked,
+    rows: [{ id: 'r3', label: '3', firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [] }],
+    stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], checkedAt: '', acknowledgedAt: null,
+  };
+}
+const options = { paper: 'a4' as const, link: 'https://example.org/r', timeZone: 'Europe/Paris' };
+const pagesOf = async (part: Partial<SheetPart> & { round: FieldRound }, paper: 'a4' | 'letter' = 'a4') => readPdf(await crewSheet([{ person: 'Nia Holt', language: 'en', ...part }], { ...options, paper }));
+/** Boxes to write in are as high as a line; the strip's squares are filled, not drawn round. */
+const boxesOf = (pages: Awaited<ReturnType<typeof pagesOf>>) => pages.flatMap(({ boxes }) => boxes.filter(({ height }) => height === 25));
+
+describe('the crew sheet', () => {
+  it('has a box for every measure that a vine is asked for, however many, wide enough for a hand', async () => {
+    const pages = await pagesOf({ round: round([stop(1, ['clusterWeight']), stop(2, measures.map(({ code }) => code)), stop(3, ['brix'])]) });
+    const boxes = boxesOf(pages);
+    // Vine 1 its weight; vine 2 three at the vine and one for the bag's label; vine 3 the bag alone.
+    expect(boxes).toHaveLength(1 + 4 + 1);
+    expect(Math.min(...boxes.map(({ width }) => width))).toBeGreaterThanOrEqual(36);
+    expect(pages[0]!.texts.join(' ')).toContain('Bag: °Brix, pH');
+  });
+
+  it('turns to the long side where the boxes would grow narrow, and stays upright where they do not', async () => {
+    const many = Array.from({ length: 7 }, (_, i) => measure(`own${i}`, 'field'));
+    const [wide] = await pagesOf({ round: round([stop(1, ['own6'])], many) });
+    expect(wide!.width).toBeGreaterThan(wide!.height);
+    const [upright] = await pagesOf({ round: round([stop(1, ['clusterCount'])], measures.slice(0, 2)) }, 'letter');
+    expect([upright!.width, upright!.height]).toEqual([612, 792]);
+  });
+
+  it('lets lab figures be written where nothing is read at the vine', async () => {
+    const pages = await pagesOf({ round: round([stop(1, ['brix', 'ph'])], measures.slice(1, 3)) });
+    expect(boxesOf(pages)).toHaveLength(3);
+  });
+
+  it('stays inside the paper, every page named and numbered', async () => {
+    const pages = await pagesOf({ round: round(Array.from({ length: 40 }, (_, i) => stop(i + 1, ['clusterCount', 'brix']))) });
+    expect(pages.length).toBeGreaterThan(1);
+    pages.forEach(({ texts, boxes, width }, index) => {
+      expect(texts).toContain(`Marl, Nia Holt. Page ${index + 1}`);
+      for (const box of boxes) expect(box.x >= 36 && box.x + box.width <= width - 36 + 0.01).toBe(true);
+    });
+    expect(boxesOf(pages)).toHaveLength(80);
+  });
+
+  it('speaks the language of its person, names post colours, zones sampled as one, safety, and what else the day holds', async () => {
+    const english = (await pagesOf({ round: round([stop(1, ['clusterCount'])]), alsoToday: [{ block: 'Millrace', vines: 48 }] })).flatMap(({ texts }) => texts).join(' ');
+    expect(english).toMatch(/Thursday,? 20 August 2026/u);
+    for (const words of ['RED', 'BLUE', 'Zone 1 (Upper + Lower): 1', 'Emergency: 112', 'Meeting point: Press yard', 'Also today: Millrace, 48 vines', 'No restriction recorded']) expect(english).toContain(words);
+    const spanish = (await pagesOf({ round: round([stop(1, ['clusterCount'])]), language: 'es' })).flatMap(({ texts }) => texts).join(' ');
+    for (const words of ['jueves, 20 de agosto de 2026', 'ROJO', 'Hilera', 'Punto de encuentro']) expect(spanish).toContain(words);
+  });
+});

@@ -1,0 +1,37 @@
+import { inflateSync } from 'node:zlib';
+
+/** What is written and drawn on each page of a PDF made by pdfkit with its built-in fonts: texts in order, and boxes in points. */
+export interface PdfPage {
+  readonly width: number;
+  readonly height: number;
+  readonly texts: readonly string[];
+  readonly boxes: readonly { readonly x: number; readonly y: number; readonly width: number; readonly height: number }[];
+}
+
+export function readPdf(bytes: Buffer): PdfPage[] {
+  const source = bytes.toString('latin1');
+  const objects = new Map([...source.matchAll(/(\d+) 0 obj\n([\s\S]*?)\nendobj/gu)].map(([, id, body]) => [id!, body!]));
+  return [...objects.values()].filter((body) => /\/Type \/Page\b/u.test(body)).map((page) => {
+    const [, width, height] = /\/MediaBox \[0 0 ([\d.]+) ([\d.]+)\]/u.exec(page)!;
+    const content = contentOf(objects.get(/\/Contents (\d+) 0 R/u.exec(page)![1]!)!);
+    return { width: Number(width), height: Number(height), texts: textsOf(content), boxes: boxesOf(content) };
+  });
+}
+
+function contentOf(body: string): string {
+  const start = body.indexOf('stream\n') + 'stream\n'.length;
+  const stream = Buffer.from(body.slice(start, body.lastIndexOf('\nendstream')), 'latin1');
+  return inflateSync(stream).toString('latin1');
+}
+
+/** Hexadecimal pieces of one TJ are one text; between them stands kerning. */
+function textsOf(content: string): string[] {
+  return [...content.matchAll(/\[((?:<[0-9a-f]*> ?-?[\d.]* ?)+)\] TJ/gu)].map(([, pieces]) => [...pieces!.matchAll(/<([0-9a-f]*)>/gu)].map(([, hex]) => Buffer.from(hex!, 'hex').toString('latin1')).join(''));
+}
+
+function boxesOf(content: string): PdfPage['boxes'] {
+  return [...content.matchAll(/^(-?[\d.]+) (-?[\d.]+) ([\d.]+) ([\d.]+) re\nS$|^(-?[\d.]+) (-?[\d.]+) ([\d.]+) ([\d.]+) re\n[\d.]+ w\nS$/gmu)].map((found) => {
+    const [x, y, width, height] = found.slice(1).filter((part) => part !== undefined).map(Number);
+    return { x: x!, y: y!, width: width!, height: height! };
+  });
+}

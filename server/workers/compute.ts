@@ -12,6 +12,7 @@ const computations = {
   outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,
   placeFile: async () => (await import('../placing/placeFile.ts')).placeFile,
   shareRound: async () => (await import('../ground/shareRound.ts')).shareRound,
+  stableGround: async () => (await import('./stableGround.ts')).stableGround,
   suggestLots: async () => (await import('./suggestLots.ts')).suggestLots,
   traceZones: async () => (await import('./traceZones.ts')).traceZones,
   zoning: async () => (await import('../../shared/analysis/zoning.ts')).makeZoning,

@@ -92,7 +92,7 @@ function cut<Values extends Uint8Array | Float32Array>(from: Values, { grid, col
 }
 
 function assertFits(own: BlockInput, other: BlockInput): void {
-  if (other.grid.cellSizeM !== own.grid.cellSizeM) throw new AnalysisError('cell-sizes', `Blocks with cells of ${own.grid.cellSizeM} m and of ${other.grid.cellSizeM} m cannot be zoned together; give them the same cell size.`);
+  if (other.grid.cellSizeM !== own.grid.cellSizeM) throw new AnalysisError('cell-sizes', `Blocks with cells of ${own.grid.cellSizeM} m and of ${other.grid.cellSizeM} m cannot be zoned together; give them the same cell size or zone them apart.`);
   const missing = own.layers.find(({ id }) => !other.layers.some((layer) => layer.id === id));
   if (missing) throw new AnalysisError('layer-missing', `Layer "${missing.id}" does not lie on all of the blocks; leave it out or zone them apart.`);
 }

@@ -92,6 +92,7 @@ export const blockLine = z.object({
   areaHa: z.number(),
   rowBearingDeg: z.number(),
   rowSpacingM: z.number(),
+  cellSizeM: z.number(),
   rowTotal: z.number().int(),
   vines: vineCounts,
   boundary: multiPolygonGeometry,

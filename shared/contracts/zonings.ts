@@ -151,8 +151,22 @@ const vineRun = z.object({ rowId: id, from: z.number().int(), to: z.number().int
 export const zoningDoubt = z.object({ vines: z.number().int(), doubtful: z.number().int(), byZone: z.array(z.object({ zone: zoneNumber, vines: z.number().int() })), runs: z.array(vineRun), geometry: multiPolygonGeometry.nullable() });
 export type ZoningDoubt = z.infer<typeof zoningDoubt>;
 
-/** How far zones and layers of other seasons agree: adjusted Rand index of zones by vine; of layers the rank correlation and the share of cells that stay in the same third. */
+/** Ground that keeps its rank in the block over the seasons of one kind of layer, changes it somewhat, or as much as chance would. */
+export const groundKinds = ['steady', 'moving', 'chance'] as const;
+const stableGround = z.object({
+  layerId: id,
+  type: z.string(),
+  name: z.string(),
+  /** One layer a season, the oldest first. */
+  measuredOn: z.array(z.string()),
+  shares: z.record(z.enum(groundKinds), z.number()),
+  areas: z.array(z.object({ ground: z.enum(groundKinds), geometry: multiPolygonGeometry })),
+});
+export type StableGroundView = z.infer<typeof stableGround>;
+
+/** How far zones and layers of other seasons agree: adjusted Rand index of zones by vine; of layers the rank correlation, the share of cells that stay in the same third, and where they keep their rank. */
 export const zoningSeasons = z.object({
+  ground: z.array(stableGround),
   zones: z.array(z.object({ zoningId: id, number: z.number().int(), season: z.string(), zones: z.number().int(), adjustedRand: z.number(), vinesApart: z.number().int(), vines: z.number().int() })),
   layers: z.array(z.object({ layerId: id, name: z.string(), measuredOn: z.string(), otherId: id, otherName: z.string(), otherMeasuredOn: z.string(), rankCorrelation: z.number(), sameThird: z.number(), cells: z.number().int() })),
 });

@@ -3,6 +3,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
 import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { Block } from '../../server/models/Block.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Job } from '../../server/models/Job.ts';
 import { Layer } from '../../server/models/Layer.ts';
@@ -148,6 +149,12 @@ describe('a zoning', () => {
     expect(there.evidence.map(({ stability }) => stability)).toEqual(here.evidence.map(({ stability }) => stability));
     for (const at of [0, 1]) expect(Math.abs(here.zones[at]!.layers[0]!.mean! - there.zones[at]!.layers[0]!.mean!)).toBeLessThan(0.05);
     expect((await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ withBlocks: [randomUUID()] }))).status).toBe(404);
+    const { cellSizeM } = await Block.query().findById(second.blockId).throwIfNotFound();
+    await Block.query().findById(second.blockId).patch({ cellSizeM: 5 });
+    const refused = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ withBlocks: [second.blockId] }));
+    expect(refused.status).toBe(422);
+    expect(refused.body).toMatchObject({ code: 'cellSizes', detail: expect.stringMatching(new RegExp(`cells of ${cellSizeM} m and Clos du Lavoir cells of 5 m.*zone them apart`)) });
+    await Block.query().findById(second.blockId).patch({ cellSizeM });
   });
 
   it('leaves out a layer with red findings until somebody answers for it', async () => {
@@ -508,6 +515,8 @@ describe('publishing', () => {
     await Zoning.query().insert({ ...kept, seasonId: season.id, number: 900, state: 'retired', publishedAt: new Date('2025-07-01') });
     const seasons = (await manager.get(`${base()}/zonings/${zoningId}/seasons`)).body as ZoningSeasons;
     expect(seasons.layers).toMatchObject([{ layerId: plot.layerId, otherId: older.id, rankCorrelation: 1, sameThird: 1 }]);
+    // The same values in both seasons: every place keeps its rank, and the drawing is the whole block.
+    expect(seasons.ground).toMatchObject([{ layerId: plot.layerId, measuredOn: ['2025-06-20', layer.measuredOn], shares: { steady: 1, moving: 0, chance: 0 }, areas: [{ ground: 'steady' }] }]);
     expect(seasons.zones).toMatchObject([{ season: '2025', number: 900, zones: 2, adjustedRand: 1, vinesApart: 0 }]);
     await Zoning.query().where({ seasonId: season.id }).delete();
   });

@@ -1,6 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import { withoutNarrow } from '../../shared/analysis/labelsNarrow.ts';
 import { pairZones, vinesApart } from '../../shared/analysis/zonePairs.ts';
+import { seededRandom } from '../../shared/analysis/random.ts';
+import { rankStability } from '../../shared/analysis/rankStability.ts';
 import { seasonAgreement } from '../../shared/analysis/seasonAgreement.ts';
 
 const read = (rows: string) => ({ cols: rows.split(' ')[0]!.length, labels: Uint8Array.from([...rows.replaceAll(' ', '')].map(Number)) });
@@ -44,5 +46,46 @@ describe('a layer in two seasons', () => {
   it('is not compared where hardly anything is common or a layer does not vary', () => {
     expect(seasonAgreement(values, values.map((value, cell) => (cell < 20 ? value : NaN)))).toBeNull();
     expect(seasonAgreement(values, values.map(() => 1))).toBeNull();
+  });
+});
+
+describe('ground over several seasons', () => {
+  const first = Float32Array.from({ length: 120 }, (_, cell) => (cell * 37) % 120);
+  const shuffledBy = (step: number) => first.map((_, cell) => (cell * step) % 120);
+
+  it('is steady everywhere when each season has the same order, whatever the level', () => {
+    const found = rankStability([first, first.map((value) => 3 * value - 7), first.map((value) => value ** 3)])!;
+    expect(found.shares).toEqual({ steady: 1, moving: 0, chance: 0 });
+    expect(found.shift.every((shift) => shift === 0)).toBe(true);
+  });
+
+  it('differs by |2r − 1| between a season and its opposite, so a sixth of the ground is steady and two thirds are as chance', () => {
+    const found = rankStability([first, first.map((value) => -value)])!;
+    first.forEach((value, cell) => expect(found.shift[cell]).toBeCloseTo(Math.abs((2 * (value + 0.5)) / 120 - 1), 6));
+    expect(found.shares.steady).toBeCloseTo(1 / 6, 2);
+    expect(found.shares.chance).toBeCloseTo(2 / 3, 2);
+  });
+
+  it('differs by a third on average between seasons that have nothing in common', () => {
+    const random = seededRandom(4);
+    const season = () => Float32Array.from({ length: 4000 }, () => random());
+    const { shift } = rankStability([season(), season(), season()])!;
+    expect(shift.reduce((sum, value) => sum + value, 0) / shift.length).toBeCloseTo(1 / 3, 2);
+  });
+
+  it('takes the mean over all pairs of three seasons', () => {
+    // Ranks of cell 0 in the three seasons: 1, 120 and 1 of 120.
+    const moved = first.map((value, cell) => (cell === 0 ? 1000 : value));
+    expect(rankStability([first, moved, first])!.shift[0]).toBeCloseTo(((119 / 120) * 2) / 3, 6);
+  });
+
+  it('is told only where all seasons have a value, and not from one season', () => {
+    const holed = shuffledBy(41).map((value, cell) => (cell < 20 ? NaN : value));
+    const found = rankStability([first, holed])!;
+    expect(found.cells).toBe(100);
+    expect([...found.ground.subarray(0, 20)].every((ground) => ground === 0)).toBe(true);
+    expect(found.ground.subarray(20).every((ground) => ground >= 1 && ground <= 3)).toBe(true);
+    expect(rankStability([first])).toBeNull();
+    expect(rankStability([first, first.map((value, cell) => (cell < 100 ? NaN : value))])).toBeNull();
   });
 });

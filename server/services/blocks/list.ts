@@ -37,6 +37,7 @@ export async function listBlocks(access: Access, now: Date): Promise<BlockLine[]
       areaHa: block.areaM2 / 10_000,
       rowBearingDeg: block.rowBearingDeg,
       rowSpacingM: block.rowSpacingM,
+      cellSizeM: block.cellSizeM,
       rowTotal: rows,
       vines: counts,
       boundary: block.boundary as BlockLine['boundary'],

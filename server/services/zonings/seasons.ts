@@ -3,13 +3,15 @@ import { decodeFloatCells } from '../../../shared/analysis/cellBytes.ts';
 import { seasonAgreement } from '../../../shared/analysis/seasonAgreement.ts';
 import { vinesApart } from '../../../shared/analysis/zonePairs.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
-import { zoningOptions, type ZoningSeasons } from '../../../shared/contracts/zonings.ts';
+import { groundKinds, zoningOptions, type ZoningSeasons } from '../../../shared/contracts/zonings.ts';
 import type { Access } from '../../access/access.ts';
 import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
 import { loadBlockLayers, type PlacedOnBlock } from '../../ground/zoneLayers.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { runCompute } from '../../workers/computePool.ts';
+import type { StableGround, StableGroundInput } from '../../workers/stableGround.ts';
 import { requireSameOutline } from './editZones.ts';
 import { zonesShown } from './publish.ts';
 
@@ -19,10 +21,11 @@ const apartDays = 200;
 /** This zoning beside other seasons: their zones in force vine by vine, and earlier or later layers of the same kind cell by cell. */
 export async function compareSeasons(access: Access, zoningId: string): Promise<ZoningSeasons> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
-  if (zoning.state === 'running' || zoning.state === 'failed') return { zones: [], layers: [] };
+  if (zoning.state === 'running' || zoning.state === 'failed') return { zones: [], layers: [], ground: [] };
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
   requireSameOutline(zoning, ground);
-  return { zones: await otherZones(access, zoning, ground), layers: await otherLayers(access, zoning, ground) };
+  const measured = await measuredLayers(access, zoning, ground);
+  return { zones: await otherZones(access, zoning, ground), layers: otherLayers(measured), ground: await steadyGround(measured, ground) };
 }
 
 /** The last zones that each other season had in force on the same outline. */
@@ -40,20 +43,58 @@ async function otherZones(access: Access, zoning: Zoning, ground: BlockVines): P
   }));
 }
 
-/** Each measured layer of the run against the nearest one of its kind from another season. */
-async function otherLayers(access: Access, zoning: Zoning, ground: BlockVines): Promise<ZoningSeasons['layers']> {
+interface MeasuredLayers {
+  /** Measured layers of the run, with a day. */
+  readonly chosen: readonly PlacedOnBlock[];
+  /** All layers of the block on its grid. */
+  readonly all: readonly PlacedOnBlock[];
+  readonly smoothingM: number;
+}
+
+async function measuredLayers(access: Access, zoning: Zoning, ground: BlockVines): Promise<MeasuredLayers> {
   const options = zoningOptions.safeParse(zoning.options);
-  if (!options.success) return [];
+  if (!options.success) return { chosen: [], all: [], smoothingM: 0 };
   const { key } = gridOf(ground);
   const onBlock = await BlockLayer.query().where({ estateId: access.estateId, blockId: zoning.blockId, gridKey: key }).select('layerId');
   const all = await loadBlockLayers(access.estateId, zoning.blockId, onBlock.map(({ layerId }) => layerId));
   const chosen = all.filter(({ layer, placed }) => options.data.layers.some(({ layerId }) => layerId === layer.id) && placed.gridKey === key && layerType(layer.type).role === 'evidence' && layer.measuredOn !== null);
+  return { chosen, all, smoothingM: options.data.smoothingM };
+}
+
+/** Each measured layer of the run against the nearest one of its kind from another season. */
+function otherLayers({ chosen, all }: MeasuredLayers): ZoningSeasons['layers'] {
   return chosen.flatMap((one) => {
     const [other] = all.filter((candidate) => isOtherSeason(one, candidate)).sort((a, b) => daysApart(one, a) - daysApart(one, b));
     const agreement = other ? seasonAgreement(decodeFloatCells(one.placed.cells), decodeFloatCells(other.placed.cells)) : null;
     if (!other || !agreement) return [];
     return [{ layerId: one.layer.id, name: one.layer.name, measuredOn: one.layer.measuredOn!, otherId: other.layer.id, otherName: other.layer.name, otherMeasuredOn: other.layer.measuredOn!, ...agreement }];
   });
+}
+
+/** Where each measured layer of the run keeps its rank over all seasons that have one of its kind. */
+async function steadyGround({ chosen, all, smoothingM }: MeasuredLayers, ground: BlockVines): Promise<ZoningSeasons['ground']> {
+  const found = await Promise.all(chosen.map(async (one) => {
+    const seasons = oneASeason(one, all);
+    if (seasons.length < 2) return [];
+    const { id, type, name } = one.layer;
+    const input: StableGroundInput = { grid: gridOf(ground), seasons: seasons.map(({ placed }) => decodeFloatCells(placed.cells)), smoothingM: layerType(type).showsRows ? smoothingM : 0 };
+    const stable = await runCompute<StableGround | null>('stableGround', input, { lane: 'quick' });
+    if (stable === null) return [];
+    const { steady, moving, chance, areas } = stable;
+    return [{
+      layerId: id, type, name, measuredOn: seasons.map(({ layer }) => layer.measuredOn!), shares: { steady, moving, chance },
+      areas: areas.map((area) => ({ ground: groundKinds[area.ground - 1]!, geometry: { type: 'MultiPolygon' as const, coordinates: area.polygonsLonLat as unknown as ZoningSeasons['ground'][number]['areas'][number]['geometry']['coordinates'] } })),
+    }];
+  }));
+  return found.flat();
+}
+
+/** The layer and one of its kind from each other season, newest first among pictures of one summer; by day. */
+function oneASeason(one: PlacedOnBlock, all: readonly PlacedOnBlock[]): PlacedOnBlock[] {
+  const kept = [one];
+  const newestFirst = all.filter((candidate) => isOtherSeason(one, candidate)).sort((a, b) => b.layer.measuredOn!.localeCompare(a.layer.measuredOn!));
+  for (const candidate of newestFirst) if (kept.every((other) => daysApart(candidate, other) >= apartDays)) kept.push(candidate);
+  return kept.sort((a, b) => a.layer.measuredOn!.localeCompare(b.layer.measuredOn!));
 }
 
 function isOtherSeason(one: PlacedOnBlock, other: PlacedOnBlock): boolean {

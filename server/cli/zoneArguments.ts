@@ -55,7 +55,7 @@ const layerKinds: Record<string, Pick<LayerArgument, 'type' | 'purpose' | 'terra
 };
 
 const bandNames: Record<string, BandName> = { nir: 'nir', red: 'red', green: 'green', rededge: 'redEdge' };
-const layerOptions = new Set(['band', 'field', 'value', 'as', 'unit', 'lat', 'lon', 'epsg', 'nodata', 'layer', 'weight', ...Object.keys(bandNames)]);
+const layerOptions = new Set(['band', 'field', 'value', 'as', 'unit', 'lat', 'lon', 'epsg', 'nodata', 'layer', 'weight', 'surface', ...Object.keys(bandNames)]);
 
 const argumentOptions = {
   block: { type: 'string' },

@@ -103,17 +103,24 @@ async function fromTable({ grid, middleLonLat }: Block, argument: LayerArgument)
   requireAnswered(options.fileName, questions);
   const value = numbers.get(argument.options.value ?? '');
   if (value === undefined) throw new BadInput(`${options.fileName}: ${argument.options.value === undefined ? 'it is not said which column holds the value' : `it has no column "${argument.options.value}" of numbers`}; give #value= one of ${[...numbers.keys()].join(', ')}.`);
-  const points = spread(grid, { lonLat: pointsLonLat, value }, argument);
+  const points = await spread(grid, { lonLat: pointsLonLat, value }, argument);
   return { ...points, notes: [...warnings.map(({ text }) => text), ...points.notes] };
 }
 
-/** Inverse distance from the points that can be true. Throws when none lies on the block. */
-function spread(grid: Grid, { lonLat, value }: { lonLat: readonly LonLat[]; value: Float64Array }, argument: LayerArgument): Values {
+const surfaces = ['distance', 'kriging'] as const;
+
+/**
+ * A surface from the points that can be true: by inverse distance, which is quick, or with #surface=kriging as the
+ * application makes it of an imported file. Throws when no point lies on the block.
+ */
+async function spread(grid: Grid, { lonLat, value }: { lonLat: readonly LonLat[]; value: Float64Array }, argument: LayerArgument): Promise<Values> {
   const factor = factorOf(argument);
   const { min, max } = layerType(argument.type);
   const limits = { min: min === null ? null : min / factor, max: max === null ? null : max / factor };
   const { kept, setAside } = cleanPoints({ ...toUtmNear(lonLat, grid.epsg), value }, limits);
-  const cells = inverseDistance(grid, kept);
+  const { surface = 'distance' } = argument.options;
+  if (!surfaces.some((known) => known === surface)) throw new BadInput(`--layer ${argument.id}: surface=${surface} cannot be used; give ${surfaces.join(' or ')}.`);
+  const cells = surface === 'kriging' ? (await import('../../shared/analysis/surveySurface.ts')).surveySurface(grid, kept).cells : inverseDistance(grid, kept);
   if (cells.every((each) => Number.isNaN(each))) throw new BadInput(`${argument.path}: none of its ${lonLat.length} points lies within 40 m of the block; check that it is the right file and its positions.`);
   return { cells, kind: 'number', notes: setAside.filter(({ count }) => count > 0).map(({ reason, count }) => `${count} points set aside: ${reason}.`) };
 }

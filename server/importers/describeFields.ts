@@ -21,7 +21,7 @@ function kindOf(values: readonly Value[]): FieldUnderstood['kind'] {
   if (values.every((value) => typeof value === 'boolean')) return 'boolean';
   const texts = values.map(String);
   if (texts.every((text) => /^\d{4}-\d\d-\d\d/.test(text))) return 'date';
-  return texts.every((text) => /^[+-]?(\d+\.?\d*|\.\d+)(e[+-]?\d+)?$/i.test(text.trim())) ? 'number' : 'text';
+  return texts.every((text) => /^[+-]?(\d+[.,]?\d*|[.,]\d+)(e[+-]?\d+)?$/i.test(text.trim())) ? 'number' : 'text';
 }
 
 function shown(value: Value): string {

@@ -73,6 +73,11 @@ const widestBeatM = 12;
 /** Bearings this close to the rows' count as along them. */
 const alongRowsDeg = 7.5;
 
+/** Whether a layer of this type without a day is doubtful. */
+export function needsDay(type: string): boolean {
+  return dated.has(type);
+}
+
 type Check = (judged: Judged) => PlacedFinding | readonly PlacedFinding[] | null;
 
 const checks: readonly Check[] = [

@@ -7,12 +7,14 @@ export interface CellGrid {
   readonly rows: number;
   readonly ramp: RampName;
   readonly range: readonly [low: number, high: number];
+  /** Colours that people gave classes, by class number. */
+  readonly own?: Readonly<Record<number, string>>;
 }
 
 const shades = 256;
 
 /** Cells as RGBA pixels: ramp colours between the two ends of the range, class colours for classes; NaN stays clear. */
-export function cellPixels({ cells, columns, rows, ramp, range: [low, high] }: CellGrid): Uint8ClampedArray<ArrayBuffer> {
+export function cellPixels({ cells, columns, rows, ramp, range: [low, high], own }: CellGrid): Uint8ClampedArray<ArrayBuffer> {
   const pixels = new Uint8ClampedArray(columns * rows * 4);
   const table = Array.from({ length: shades }, (_, shade) => rampColour(ramp, shade / (shades - 1)));
   const span = high > low ? high - low : 1;
@@ -20,7 +22,7 @@ export function cellPixels({ cells, columns, rows, ramp, range: [low, high] }: C
     const value = cells[cell]!;
     if (Number.isNaN(value)) continue;
     const share = Math.min(1, Math.max(0, (value - low) / span));
-    const colour = ramp === 'classes' ? channels(classColour(value)) : table[Math.round(share * (shades - 1))]!;
+    const colour = ramp === 'classes' ? channels(classColour(value, own)) : table[Math.round(share * (shades - 1))]!;
     pixels.set([colour[0], colour[1], colour[2], 255], cell * 4);
   }
   return pixels;

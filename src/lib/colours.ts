@@ -90,13 +90,20 @@ export function rampColour(ramp: RampName, share: number): readonly [number, num
   return [mix(0), mix(1), mix(2)];
 }
 
+/** Colours that people gave classes, by class number. */
+export function ownClassColours(classes: readonly { value: number; colour: string | null }[] | null): Record<number, string> {
+  return Object.fromEntries((classes ?? []).flatMap(({ value, colour }) => (colour === null ? [] : [[value, colour]])));
+}
+
 /** CSS gradient of a ramp, low at the left. */
 export function rampGradient(ramp: RampName): string {
   return `linear-gradient(to right, ${ramps[ramp].join(', ')})`;
 }
 
 /** Colour of a class number (soil classes); classes past six repeat, so the legend always has the name. */
-export function classColour(classNumber: number): string {
+export function classColour(classNumber: number, own: Readonly<Record<number, string>> = {}): string {
+  const chosen = own[classNumber];
+  if (chosen !== undefined) return chosen;
   return unordered[((Math.round(classNumber) % 6) + 6) % 6]!;
 }
 

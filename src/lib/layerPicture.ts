@@ -3,6 +3,7 @@ import { layerType, type RampName } from '../../shared/catalog/layerTypes.ts';
 import type { BlockLayerView } from '../../shared/contracts/layers.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
+import { ownClassColours } from './colours.ts';
 
 type Corner = readonly [number, number];
 
@@ -15,6 +16,7 @@ export interface LayerPicture {
   readonly cornersLonLat: readonly [Corner, Corner, Corner, Corner];
   readonly ramp: RampName;
   readonly range: readonly [number, number];
+  readonly own: Readonly<Record<number, string>>;
 }
 
 /**
@@ -36,6 +38,7 @@ export function layerPicture(layer: BlockLayerView, block: { boundary: { coordin
     cornersLonLat: [corner(0, 0), corner(grid.cols, 0), corner(grid.cols, grid.rows), corner(0, grid.rows)],
     ramp: layerType(layer.type).ramp,
     range: shownRange(layer),
+    own: ownClassColours(layer.classes),
   };
 }
 

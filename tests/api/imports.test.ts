@@ -257,6 +257,9 @@ describe('soil', () => {
     expect((await agent.patch(path, { classes: [{ value: 0, name: 'Heavy clay', colour: '#886644' }] })).body.code).toBe('otherClasses');
     expect((await agent.patch(path, { classes: [{ value: 0, name: 'Heavy clay', colour: '#886644' }, { value: 1, name: 'Loam', colour: null }] })).status).toBe(204);
     expect((await layersOn(west.id)).find((each) => each.id === layer.id)!.classes![0]).toMatchObject({ name: 'Heavy clay', colour: '#886644' });
+    // A soil map is not doubtful for want of a day.
+    expect((await agent.patch(path, { measuredOn: null })).status).toBe(204);
+    expect((await layersOn(west.id)).find((each) => each.id === layer.id)).toMatchObject({ readiness: 'ready', findings: [] });
     // The class has the same number on the other block, where loam does not occur.
     const { cells } = await cellsOf(layer.id, east.id);
     expect([...new Set(cells.filter((value) => !Number.isNaN(value)))]).toEqual([0]);

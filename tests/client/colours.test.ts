@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { resolve } from 'node:path';
 import { describe, expect, it } from 'vitest';
-import { contrast, markOn, rampColour, rampStops, zoneStyle } from '../../src/lib/colours.ts';
+import { classColour, contrast, markOn, ownClassColours, rampColour, rampStops, zoneStyle } from '../../src/lib/colours.ts';
 
 const css = readFileSync(resolve(import.meta.dirname, '../../src/assets/tokens.css'), 'utf8');
 
@@ -76,5 +76,13 @@ describe('ramps', () => {
   it('a difference of nothing is the pale middle', () => {
     expect(rampColour('difference', 0.5)).toEqual([0xec, 0xe5, 0xe0]);
     expect(rampStops('difference')).toHaveLength(7);
+  });
+});
+
+describe('classes of soil', () => {
+  it('take the colours that people gave them, the others keep theirs', () => {
+    const own = ownClassColours([{ value: 0, colour: null }, { value: 1, colour: '#C08030' }]);
+    expect(own).toEqual({ 1: '#C08030' });
+    expect([classColour(1, own), classColour(0, own)]).toEqual(['#C08030', classColour(0)]);
   });
 });

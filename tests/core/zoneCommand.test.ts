@@ -62,7 +62,18 @@ describe('the zoning command', () => {
     expect(report.weights).toEqual([{ layerId: 'ndvi', weight: 1 }, { layerId: 'elevation', weight: 0.5 }, { layerId: 'slope', weight: 0 }]);
   });
 
+  it('spreads points by inverse distance, or by kriging where it is asked for', async () => {
+    const run = async (surface: string) => {
+      const args = ['--block', 'block.geojson', '--layer', `conductivity=ec.csv#value=ec_deep_mS_m${surface}`, '--zones', '3', '--cell', '4', '--out', 'points.geojson'];
+      expect((await zone(...args)).exitCode).toBe(0);
+      return readFileSync(join(folder, 'points.geojson'), 'utf8');
+    };
+    expect(await run(',surface=distance')).toBe(await run(''));
+    expect(await run(',surface=kriging')).not.toBe(await run(''));
+  });
+
   it.each<[string, readonly string[], RegExp]>([
+    ['an unknown surface', ['--block', 'block.geojson', '--layer', 'conductivity=ec.csv#value=ec_deep_mS_m,surface=spline', '--out', 'x.geojson'], /surface=spline cannot be used; give distance or kriging/],
     ['no block', ['--layer', 'ndvi=vigour.tif#red=1,nir=2', '--out', 'x.geojson'], /--block is missing/],
     ['an unknown option', [...usual, '--colour', 'red', '--out', 'x.geojson'], /colour/],
     ['a file that is not there', ['--block', 'block.geojson', '--layer', 'vigour=gone.tif', '--out', 'x.geojson'], /gone\.tif does not exist/],

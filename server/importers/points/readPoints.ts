@@ -54,7 +54,8 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   questions.push(...placed.questions);
   return {
     ...base,
-    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)),
+    // Decimal commas, units in cells and a few words among numbers leave a column one of numbers.
+    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)).map((column) => (collected.numbers.has(column.name) ? { ...column, kind: 'number' as const } : column)),
     position: { first: table.names[columns.x]!, second: table.names[columns.y]!, frame: placed.frame },
     reference: placed.reference,
     epsg: placed.reference?.epsg ?? null,

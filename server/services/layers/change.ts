@@ -1,3 +1,4 @@
+import { needsDay } from '../../../shared/analysis/layerFindings.ts';
 import type { LayerChange, OverrideChange } from '../../../shared/contracts/layers.ts';
 import type { Access } from '../../access/access.ts';
 import { Unusable } from '../../errors.ts';
@@ -13,7 +14,7 @@ export async function changeLayer(access: Access, layerId: string, change: Layer
     if (change.classes !== undefined) requireSameClasses(layer, change.classes.map((entry) => entry.value));
     await Layer.query(trx).where({ estateId: access.estateId, id: layerId }).patch(change);
     // The day is judged with the layer: naming it answers the finding about a missing one, taking it away brings it back.
-    if (change.measuredOn !== undefined) await redate(access, layerId, change.measuredOn, trx);
+    if (change.measuredOn !== undefined && needsDay(layer.type)) await redate(access, layerId, change.measuredOn, trx);
     await writeAudit(trx, access, { action: 'layer.change', subjectType: 'layer', subjectId: layerId, subjectName: layer.name, before: { name: layer.name, unit: layer.unit, measuredOn: layer.measuredOn, classes: layer.classes }, after: change });
   });
 }

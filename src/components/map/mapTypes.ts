@@ -69,6 +69,8 @@ export interface MapRaster {
   /** Values at the ends of the ramp; classes ignore it. */
   readonly range: readonly [low: number, high: number];
   readonly opacity?: number;
+  /** Colours that people gave classes, by class number. */
+  readonly own?: Readonly<Record<number, string>>;
 }
 
 export type MapCorners = readonly [readonly [number, number], readonly [number, number], readonly [number, number], readonly [number, number]];

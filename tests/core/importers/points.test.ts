@@ -32,6 +32,15 @@ describe('numbers in cells', () => {
   });
 });
 
+describe('a column of values', () => {
+  it('is one of numbers with decimal commas, units in its cells or a word among many, so that it can be chosen', async () => {
+    const rows = Array.from({ length: 12 }, (_, row) => `43,10${row};2,41${row};${20 + row},5;${row} mS/m;${row === 3 ? 'error' : row};block ${row}`);
+    const understood = await read(['lat;lon;EC;deep;top;name', ...rows].join('\n'));
+    expect(understood.columns.map(({ name, kind }) => [name, kind])).toEqual([['lat', 'number'], ['lon', 'number'], ['EC', 'number'], ['deep', 'number'], ['top', 'number'], ['name', 'text']]);
+    expect([...understood.numbers.keys()]).toEqual(['EC', 'deep', 'top']);
+  });
+});
+
 describe('angles', () => {
   // 44° 50' 12.3" = 44 + 50/60 + 12.3/3600 = 44.83675; 44° 50.205' is the same.
   it.each([

@@ -2,7 +2,7 @@ import type { Page } from 'playwright-core';
 import { expect } from 'vitest';
 
 /** Gives the answers that are still asked for, in steps, until the file is placed or, for outlines, offers what `ends` says. */
-export async function answer(page: Page, file: string, answers: Record<string, string>, ends = 'Ready'): Promise<void> {
+export async function answer(page: Page, file: string, answers: Record<string, string | RegExp>, ends = 'Ready'): Promise<void> {
   const line = page.locator('li.import-line', { hasText: file }).first();
   await line.waitFor();
   for (let step = 0; step < 6; step++) {
@@ -16,8 +16,8 @@ export async function answer(page: Page, file: string, answers: Record<string, s
       const choice = line.getByRole('group', { name: question }).getByText(words, { exact: true });
       if (await choice.count()) await choice.first().click();
       const list = line.getByLabel(question);
-      if ((await list.count()) && (await list.first().evaluate((element) => element.tagName)) === 'SELECT') await list.first().selectOption({ label: words });
-      if ((await list.count()) && (await list.first().getAttribute('type')) === 'date') await list.first().fill(words);
+      if ((await list.count()) && (await list.first().evaluate((element) => element.tagName)) === 'SELECT') await list.first().selectOption({ label: typeof words === 'string' ? words : ((await list.first().locator('option').allInnerTexts()).find((text) => words.test(text)) ?? '') });
+      if ((await list.count()) && (await list.first().getAttribute('type')) === 'date') await list.first().fill(String(words));
     }
     const answered = page.waitForResponse((response) => response.request().method() !== 'GET' && response.url().includes('/imports/'));
     await line.getByRole('button', { name: 'Confirm', exact: true }).click();

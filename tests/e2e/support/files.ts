@@ -13,7 +13,7 @@ export interface UploadFile {
 }
 
 /** A new field of 150 m by 120 m east of the demo's blocks; its western half is weak, its eastern half strong. */
-const field = { west: 1180, south: 520, width: 150, height: 120 };
+export const field = { west: 1180, south: 520, width: 150, height: 120 };
 
 export function corner(x: number, y: number): [number, number] {
   const { anchor } = frameOf();

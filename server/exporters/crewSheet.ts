@@ -84,6 +84,8 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language, alsoToday 
   if (alsoToday.length > 0) pdf.text(`${texts.alsoToday}: ${alsoToday.map(({ block, vines }) => `${block}, ${vines} ${texts.vines}`).join('; ')}`, { width });
   if (round.notes) pdf.text(round.notes, { width });
   const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}: ${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
+  const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
+  if (inBag.length > 0) pdf.text(`${texts.bag}: ${inBag.join(', ')}`, { width });
   if (handfuls.length > 0) pdf.text(`${texts.ofEach}: ${handfuls.join('; ')}`, { width });
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);
@@ -140,8 +142,7 @@ function boxesOf({ round, language }: SheetPart): Box[] {
   const goesToLab = (stop: WalkStop) => laboratory.some(({ code }) => stop.measures.includes(code));
   // With nothing to read at the vine somebody may still carry an instrument.
   const read = (field.length > 0 ? field : laboratory).map((measure): Box => ({ shares: 1, head: () => headOf(measure, language), box: (stop) => stop.measures.includes(measure.code) }));
-  const named = laboratory.map(({ code, name }) => measureWords[language]?.[code] ?? (name || code)).join(', ');
-  return laboratory.length > 0 ? [...read, { shares: 1.6, head: ({ bag }) => `${bag}: ${named}`, box: goesToLab }] : read;
+  return laboratory.length > 0 ? [...read, { shares: 1.6, head: ({ bag }) => bag, box: goesToLab }] : read;
 }
 
 function columnsOf(pdf: PDFKit.PDFDocument, part: SheetPart): Column[] {
@@ -168,7 +169,7 @@ function columnsOf(pdf: PDFKit.PDFDocument, part: SheetPart): Column[] {
 /** The measure in the reader's language; a unit that only repeats the name is left out. */
 function headOf({ code, name, unit }: Pick<FieldRound['measures'][number], 'code' | 'name' | 'unit'>, language: SheetLanguage): string {
   const word = measureWords[language]?.[code] ?? (name || code);
-  return unit === 'clusters' || unit === 'berries' || word.includes(unit) ? word : `${word}, ${unit}`;
+  return unit === 'clusters' || unit === 'berries' || word.split(' ').includes(unit) ? word : `${word}, ${unit}`;
 }
 
 function fromWords({ enterBy, heading, aheadFrom }: WalkStop, round: FieldRound, texts: Texts): string {

@@ -99,11 +99,21 @@ function drawCode(pdf: PDFKit.PDFDocument, code: string, at: { x: number; y: num
 function drawFacts(pdf: PDFKit.PDFDocument, facts: LabelFacts, { x, y, room, texts }: { x: number; y: number; room: number; texts: Drawing['texts'] }): void {
   const { block, date, zone, vine, stop, measures, person } = facts;
   const line = (words: string, font: string, size: number, down: number) => pdf.font(font).fontSize(size).text(words, x, y + down, { width: room, height: size * 1.2, ellipsis: true, lineBreak: false });
-  line(`${texts.zone} ${zone}`, 'Helvetica-Bold', 4.4, 0);
-  line(vine ? `${texts.row} ${vine.row}  ${texts.vine} ${vine.number}` : `${texts.wholeZone} ${stop}`, vine ? 'Helvetica-Bold' : 'Helvetica', vine ? 4.4 : 3, 5.2);
+  // Which vine or stop it is must not be cut off: the letters shrink before a number does.
+  const whole = (words: string, font: string, size: number, down: number) => line(words, font, fittingSize(pdf, words, { font, size, room }), down);
+  whole(`${texts.zone} ${zone}`, 'Helvetica-Bold', 4.4, 0);
+  whole(vine ? `${texts.row} ${vine.row}  ${texts.vine} ${vine.number}` : `${texts.wholeZone} ${stop}`, vine ? 'Helvetica-Bold' : 'Helvetica', vine ? 4.4 : 3, 5.2);
   line(`${block}, ${date}`, 'Helvetica', 3, 10.6);
   line(vine ? `${texts.stop} ${stop}, ${person}` : person, 'Helvetica', 3, 14.2);
   line(measures, 'Helvetica', 3, 17.8);
+}
+
+const leastSizeMm = 2.1;
+
+/** The size at which the words fit the room, not below what is read at arm's length. */
+function fittingSize(pdf: PDFKit.PDFDocument, words: string, { font, size, room }: { font: string; size: number; room: number }): number {
+  const width = pdf.font(font).fontSize(size).widthOfString(words);
+  return Math.max(leastSizeMm, Math.min(size, (0.98 * size * room) / width));
 }
 
 /** Lines to write on, for a label that nobody has bound yet. */

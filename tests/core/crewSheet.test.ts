@@ -30,6 +30,8 @@ describe('the crew sheet', () => {
     expect(boxes).toHaveLength(1 + 4 + 1);
     expect(Math.min(...boxes.map(({ width }) => width))).toBeGreaterThanOrEqual(36);
     expect(pages[0]!.texts.join(' ')).toContain('Bag: °Brix, pH');
+    // A unit is left out where the name is the unit, not where its letter happens to be in the name.
+    expect(pages[0]!.texts.join(' ')).toContain('weight, g');
   });
 
   it('turns to the long side where the boxes would grow narrow, and stays upright where they do not', async () => {

@@ -14,7 +14,8 @@ export const allowsDemo = () => (process.env.PATCHROW_DEMO ? process.env.PATCHRO
 
 /** Secret for session cookies, made once and kept, so that people stay signed in over a restart. Production sets its own. */
 function sessionSecret() {
-  if (process.env.SESSION_SECRET || isProduction()) return process.env.SESSION_SECRET;
+  if (process.env.SESSION_SECRET) return process.env.SESSION_SECRET;
+  if (isProduction()) throw new Problem('With NODE_ENV=production the environment must hold SESSION_SECRET: at least 16 random characters, the same at every start. For instance: SESSION_SECRET="$(openssl rand -hex 32)"');
   const file = inState('secret');
   if (!existsSync(file)) writeFileSync(file, randomBytes(32).toString('hex'), { mode: 0o600 });
   return readFileSync(file, 'utf8');
@@ -23,7 +24,7 @@ function sessionSecret() {
 /** Environment of the application's programs. */
 export function applicationEnv({ url }) {
   const secret = sessionSecret();
-  return { ...process.env, DATABASE_URL: url, PATCHROW_DEMO: allowsDemo() ? '1' : '0', ...(secret === undefined ? {} : { SESSION_SECRET: secret }) };
+  return { ...process.env, DATABASE_URL: url, PATCHROW_DEMO: allowsDemo() ? '1' : '0', SESSION_SECRET: secret };
 }
 
 /** Runs one of the server's command-line programs; `from` is 'built' (dist) or 'source' (through tsx). */

@@ -1,7 +1,7 @@
 import { withSource, type ByteSource } from './byteSource.ts';
 import { ImportProblem, naming } from './importProblem.ts';
 import { readPoints } from './points/readPoints.ts';
-import type { RasterReadOptions } from './raster/describeRaster.ts';
+import { describeRaster, type RasterReadOptions } from './raster/describeRaster.ts';
 import { inspectRaster } from './raster/inspectRaster.ts';
 import { tiffNames } from './raster/withRaster.ts';
 import { sniffFormat, type Sniffed, type SniffedFormat } from './sniffFormat.ts';
@@ -17,11 +17,13 @@ export interface ImportFormat {
   readonly endings: readonly string[];
   readonly kind: Understood['kind'];
   readonly read: (input: string | Uint8Array, options: RasterReadOptions) => Promise<Understood>;
+  /** The same without a look at the values, for a file that has been looked at before. */
+  readonly readAgain?: (input: string | Uint8Array, options: RasterReadOptions) => Promise<Understood>;
 }
 
 /** Formats that are read. A new one is a reader and its row. */
 export const importFormats: readonly ImportFormat[] = [
-  { id: 'geotiff', contents: ['geotiff'], endings: ['tif', 'tiff'], kind: 'raster', read: async (input, options) => (await inspectRaster(input, options)).understood },
+  { id: 'geotiff', contents: ['geotiff'], endings: ['tif', 'tiff'], kind: 'raster', read: async (input, options) => (await inspectRaster(input, options)).understood, readAgain: describeRaster },
   { id: 'shapefile', contents: ['zip'], endings: ['zip', 'kmz'], kind: 'vector', read: readVectors },
   { id: 'geopackage', contents: ['geopackage'], endings: ['gpkg'], kind: 'vector', read: readVectors },
   { id: 'geojson', contents: ['geojson'], endings: ['geojson', 'json'], kind: 'vector', read: readVectors },
@@ -32,10 +34,20 @@ export const importFormats: readonly ImportFormat[] = [
 
 /** What a file holds, whatever its name says. Throws ImportProblem for anything that cannot be used. */
 export async function understandFile(input: string | Uint8Array, options: RasterReadOptions): Promise<Understood> {
+  return (await formatOf(input, options)).read(input, options);
+}
+
+/** The same for a file whose questions were answered: a large picture is not decoded for a look at its values once more. */
+export async function understandAgain(input: string | Uint8Array, options: RasterReadOptions): Promise<Understood> {
+  const format = await formatOf(input, options);
+  return (format.readAgain ?? format.read)(input, options);
+}
+
+async function formatOf(input: string | Uint8Array, options: RasterReadOptions): Promise<ImportFormat> {
   const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffContents(source, options.fileName)));
   const format = importFormats.find(({ contents }) => contents.includes(sniffed.format));
   if (format === undefined) throw unreadable(sniffed, options.fileName);
-  return format.read(input, options);
+  return format;
 }
 
 /** An archive with a TIFF and no outlines counts as the TIFF. */

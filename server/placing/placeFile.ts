@@ -1,4 +1,4 @@
-import { understandFile } from '../importers/formats.ts';
+import { understandAgain } from '../importers/formats.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
 import { speedColumn } from '../importers/points/speedColumn.ts';
 import type { PlaceInput, PlacedLayer } from './placed.ts';
@@ -25,7 +25,7 @@ export async function placeFile(input: PlaceInput, report: Progress): Promise<Pl
 
 async function layersOf(input: PlaceInput, report: Progress): Promise<PlacedLayer[]> {
   const { source } = input;
-  const understood = await understandFile(source.path, readOptionsOf(source));
+  const understood = await understandAgain(source.path, readOptionsOf(source));
   if (understood.kind === 'raster') return placeRaster(input, understood, report);
   if (understood.kind === 'vector') return placeShapes(input, understood);
   const name = source.answers.attribute!;

@@ -1,12 +1,14 @@
 /**
  * Seconds and memory of reading pictures onto a grid, a picture and a process each, beside GDAL reading the same bands whole
- * (python3-gdal, one thread); runs interleaved, medians, and their ratio. Pictures: every TIFF of a folder, or the encodings
- * that gdal_translate makes here of a generated one. Small pictures measure little but the start of both programs.
+ * (python3-gdal, one thread), both without the start of their programs; runs interleaved, medians, and their ratio. Pictures: every TIFF of a folder, or the encodings
+ * that gdal_translate makes here of a generated one; `pixels` says whether every value is the one that GDAL reads. Small
+ * pictures measure little but opening them.
  */
 import { spawnSync } from 'node:child_process';
 import { mkdtempSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { basename, join } from 'node:path';
+import { pixelsBesideGdal } from './pixelsBesideGdal.ts';
 import { geoTiffBytes } from '../../server/exporters/geoTiffBytes.ts';
 
 export interface ImportBenchOptions {
@@ -24,11 +26,13 @@ const encodings: Readonly<Record<string, readonly string[]>> = {
   'uncompressed, tiles': ['-co', 'TILED=YES'],
 };
 
-export function benchImport(options: ImportBenchOptions): unknown[] {
+export async function benchImport(options: ImportBenchOptions): Promise<unknown[]> {
   const folder = mkdtempSync(join(tmpdir(), 'import-bench-'));
   try {
     const pictures = options.dataFolder === null ? generated(folder) : readdirSync(options.dataFolder).filter((name) => /\.tiff?$/i.test(name)).map((name) => ({ name, path: join(options.dataFolder!, name) }));
-    return pictures.map(({ name, path }) => row(name, path, options));
+    const rows: unknown[] = [];
+    for (const { name, path } of pictures) rows.push(await row(name, path, options));
+    return rows;
   } finally {
     rmSync(folder, { recursive: true, force: true });
   }
@@ -47,30 +51,45 @@ function generated(folder: string): { name: string; path: string }[] {
 
 interface Run {
   seconds: number;
+  /** Resident set before the first byte of the picture was read, and the highest after. */
+  baseMb: number;
   peakMb: number;
 }
 
-function row(name: string, path: string, { runs, cellSizeM }: ImportBenchOptions): unknown {
+const gdalScript = `
+import sys, json, time
+from osgeo import gdal
+gdal.UseExceptions()
+gdal.SetConfigOption('GDAL_NUM_THREADS', '1')
+mark = lambda: next(int(line.split()[1]) for line in open('/proc/self/status') if line.startswith('VmHWM')) / 1024
+base, start = mark(), time.perf_counter()
+gdal.Open(sys.argv[1]).ReadAsArray()
+print(json.dumps({'seconds': time.perf_counter() - start, 'baseMb': base, 'peakMb': mark()}))
+`;
+
+async function row(name: string, path: string, { runs, cellSizeM }: ImportBenchOptions): Promise<unknown> {
   const [own, gdal]: [Run[], Run[]] = [[], []];
+  const picture = basename(name);
   for (let run = 0; run < runs; run++) {
-    const read = timed(process.execPath, ['--import', 'tsx', join(import.meta.dirname, 'readOnePicture.ts'), path, String(cellSizeM)]);
-    if (typeof read === 'string') return { picture: basename(name), refused: read };
+    const read = measured(process.execPath, ['--import', 'tsx', join(import.meta.dirname, 'readOnePicture.ts'), path, String(cellSizeM)]);
+    if (typeof read === 'string') return { picture, refused: read, pixels: await pixelsBesideGdal(path) };
     own.push(read);
-    const beside = timed('/usr/bin/python3', ['-c', `from osgeo import gdal; gdal.UseExceptions(); gdal.SetConfigOption('GDAL_NUM_THREADS', '1'); gdal.Open(${JSON.stringify(path)}).ReadAsArray()\nimport resource; print('{"peakMb": %f}' % (resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024))`]);
+    const beside = measured('/usr/bin/python3', ['-c', gdalScript, path]);
     if (typeof beside !== 'string') gdal.push(beside);
   }
-  const seconds = median(own.map((run) => run.seconds));
-  const gdalSeconds = gdal.length === 0 ? null : median(gdal.map((run) => run.seconds));
-  return { picture: basename(name), seconds, peakMb: median(own.map((run) => run.peakMb)), gdalSeconds, gdalPeakMb: gdal.length === 0 ? null : median(gdal.map((run) => run.peakMb)), ratioToGdal: gdalSeconds === null ? null : seconds / gdalSeconds };
+  const of = (list: readonly Run[], part: (run: Run) => number) => (list.length === 0 ? null : median(list.map(part)));
+  const [seconds, gdalSeconds] = [of(own, (run) => run.seconds), of(gdal, (run) => run.seconds)];
+  return {
+    picture, seconds, gdalSeconds, ratioToGdal: seconds === null || gdalSeconds === null ? null : seconds / gdalSeconds,
+    peakMb: of(own, (run) => run.peakMb), overBaseMb: of(own, (run) => run.peakMb - run.baseMb), gdalPeakMb: of(gdal, (run) => run.peakMb),
+    pixels: await pixelsBesideGdal(path),
+  };
 }
 
-/** Wall seconds of a process and the highest resident set it says of itself; its complaint when it fails. */
-function timed(command: string, args: readonly string[]): Run | string {
-  const start = process.hrtime.bigint();
+/** What a process measured of itself; its complaint when it fails. */
+function measured(command: string, args: readonly string[]): Run | string {
   const { status, stdout, stderr } = spawnSync(command, [...args], { encoding: 'utf8' });
-  const seconds = Number(process.hrtime.bigint() - start) / 1e9;
-  if (status !== 0) return stderr.trim().split('\n').at(-1) ?? 'it failed';
-  return { seconds, ...(JSON.parse(stdout) as { peakMb: number }) };
+  return status === 0 ? (JSON.parse(stdout) as Run) : (/(?:Error|Problem): (.*)/.exec(stderr)?.[1] ?? 'it failed');
 }
 
 function median(values: readonly number[]): number {

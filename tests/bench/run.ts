@@ -44,7 +44,7 @@ else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), 
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);
 else if (values.ripening) for (const row of ripeningRows(Number(values.count ?? 2000))) print(row);
-else if (values.import) for (const row of benchImport({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null })) print(row);
+else if (values.import) for (const row of await benchImport({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null })) print(row);
 else if (values.plan) for (const row of benchPlan(Number(values.runs))) print(row);
 else print(await benchPipeline({ runs: Number(values.runs), cellSizeM: Number(values.cell), dataFolder: values.data ?? null, against: values.against ?? [] }));
 

@@ -8,11 +8,13 @@
 const CLEAR = 256;
 const END = 257;
 
+/** Pieces by code. Entries from 258 up are written before they are read, so one pair of tables serves all strips. */
+const start = new Int32Array(4097);
+const length = new Int32Array(4097);
+
 /** At most `size` bytes; fewer when the data stop early or are damaged. */
 export function decodeLzw(input: Uint8Array, size: number): Uint8Array<ArrayBuffer> {
   const out = new Uint8Array(size);
-  const start = new Int32Array(4097);
-  const length = new Int32Array(4097);
   let next = 258;
   let width = 9;
   let bits = 0;

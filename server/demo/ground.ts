@@ -1,8 +1,10 @@
 import { smoothNoise, step, type Field } from './smoothNoise.ts';
+import type { DemoPlace } from './demoPlace.ts';
 import type { DemoBlock } from './marlhaven.ts';
 
 /** What lies under and on the vines, as functions of metres from the anchor. */
 export interface Ground {
+  place: DemoPlace;
   elevationM: Field;
   /** Depth to the marl, in metres: what vigour follows. */
   soilDepthM: Field;
@@ -13,7 +15,7 @@ export interface Ground {
 }
 
 /** A south-facing hillside with two spurs, a hollow between them and shallow marl on the crests. */
-export function makeGround(seed: number): Ground {
+export function makeGround(seed: number, place: DemoPlace): Ground {
   const broad = smoothNoise(seed + 1, 260);
   const middle = smoothNoise(seed + 2, 110);
   const fine = smoothNoise(seed + 3, 34);
@@ -45,7 +47,7 @@ export function makeGround(seed: number): Ground {
         return () => 0.5;
     }
   };
-  return { elevationM, soilDepthM, vigour, conductivity };
+  return { place, elevationM, soilDepthM, vigour, conductivity };
 }
 
 /** Thirds of the block by area, so that each step has room. */

@@ -2,7 +2,8 @@ import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { fromUtm, toUtm } from '../../shared/geo/utm.ts';
 import { geoTiffBytes } from '../exporters/geoTiffBytes.ts';
 import { extentOf, type Ground } from './ground.ts';
-import { blocks, estate, type DemoBlock } from './marlhaven.ts';
+import type { DemoPlace } from './demoPlace.ts';
+import { blocks, type DemoBlock } from './marlhaven.ts';
 
 export interface DemoFile {
   name: string;
@@ -20,9 +21,9 @@ interface Frame {
 }
 
 /** Rectangle round all blocks, in metres from the anchor. */
-export function frameOf(): Frame {
+export function frameOf(place: DemoPlace): Frame {
   const extents = blocks.map(extentOf);
-  const [anchorX, anchorY] = toUtm([estate.anchorLonLat[0], estate.anchorLonLat[1]], estate.epsg);
+  const [anchorX, anchorY] = toUtm([place.anchorLonLat[0], place.anchorLonLat[1]], place.epsg);
   return {
     anchor: [Math.round(anchorX), Math.round(anchorY)],
     minX: Math.min(...extents.map((extent) => extent[0])) - margin,
@@ -33,10 +34,10 @@ export function frameOf(): Frame {
 }
 
 /** A block's outline in longitude and latitude, closed, counter-clockwise. */
-export function outlineLonLat(block: DemoBlock): [number, number][] {
-  const { anchor } = frameOf();
+export function outlineLonLat(block: DemoBlock, place: DemoPlace): [number, number][] {
+  const { anchor } = frameOf(place);
   const ring = block.ringM.map(([x, y]): [number, number] => {
-    const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], estate.epsg);
+    const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], place.epsg);
     return [Number(lon.toFixed(8)), Number(lat.toFixed(8))];
   });
   const closed = [...ring, ring[0]!];
@@ -47,7 +48,7 @@ export function outlineLonLat(block: DemoBlock): [number, number][] {
 /** Red and near-infrared in 16 bits at half a metre, with rows, alleys, noise and places without a vine. */
 export function vigourImage(ground: Ground, options: { seed: number; year: number; gain: number }): DemoFile {
   const pixel = 0.5;
-  const { anchor, minX, minY, maxX, maxY } = frameOf();
+  const { anchor, minX, minY, maxX, maxY } = frameOf(ground.place);
   const width = Math.round((maxX - minX) / pixel);
   const height = Math.round((maxY - minY) / pixel);
   const red = new Uint16Array(width * height).fill(2300);
@@ -77,24 +78,24 @@ export function vigourImage(ground: Ground, options: { seed: number; year: numbe
       }
     }
   }
-  const bytes = geoTiffBytes({ width, height, bands: [red, nearInfrared], epsg: estate.epsg, originX: anchor[0] + minX, originY: anchor[1] + maxY, pixelSize: pixel, noData: 0, description: 'red, near infrared' });
+  const bytes = geoTiffBytes({ width, height, bands: [red, nearInfrared], epsg: ground.place.epsg, originX: anchor[0] + minX, originY: anchor[1] + maxY, pixelSize: pixel, noData: 0, description: 'red, near infrared' });
   return { name: `vigour-${options.year}.tif`, bytes };
 }
 
 /** Elevation at two metres, float, in metres. */
 export function elevationModel(ground: Ground): DemoFile {
   const pixel = 2;
-  const { anchor, minX, minY, maxX, maxY } = frameOf();
+  const { anchor, minX, minY, maxX, maxY } = frameOf(ground.place);
   const width = Math.round((maxX - minX) / pixel);
   const height = Math.round((maxY - minY) / pixel);
   const metres = new Float32Array(width * height);
   for (let row = 0; row < height; row++) for (let col = 0; col < width; col++) metres[row * width + col] = ground.elevationM(minX + (col + 0.5) * pixel, maxY - (row + 0.5) * pixel);
-  return { name: 'elevation.tif', bytes: geoTiffBytes({ width, height, bands: [metres], epsg: estate.epsg, originX: anchor[0] + minX, originY: anchor[1] + maxY, pixelSize: pixel, noData: -9999, description: 'elevation, m' }) };
+  return { name: 'elevation.tif', bytes: geoTiffBytes({ width, height, bands: [metres], epsg: ground.place.epsg, originX: anchor[0] + minX, originY: anchor[1] + maxY, pixelSize: pixel, noData: -9999, description: 'elevation, m' }) };
 }
 
 /** Conductivity points along every sixth alley, with the usual faults: standing still, negative, doubled. */
 export function conductivityPoints(ground: Ground, seed: number): DemoFile {
-  const { anchor } = frameOf();
+  const { anchor } = frameOf(ground.place);
   const random = seededRandom(seed);
   const lines = ['latitude,longitude,ec_deep_mS_m,speed_kmh'];
   for (const block of blocks) {
@@ -108,7 +109,7 @@ export function conductivityPoints(ground: Ground, seed: number): DemoFile {
         const x = cx + s * Math.cos(bearing) + t * Math.sin(bearing);
         const y = cy - s * Math.sin(bearing) + t * Math.cos(bearing);
         if (!insideRing(block.ringM, x, y)) continue;
-        const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], estate.epsg);
+        const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], ground.place.epsg);
         const fault = random();
         const value = fault < 0.004 ? -conductivity(x, y) : conductivity(x, y) + 1.1 * randomNormal(random);
         lines.push(`${lat.toFixed(7)},${lon.toFixed(7)},${value.toFixed(1)},${(fault > 0.992 ? 0 : 5 + random()).toFixed(1)}`);
@@ -120,7 +121,7 @@ export function conductivityPoints(ground: Ground, seed: number): DemoFile {
 
 /** Soil map: squares of 20 m joined into classes by depth, as GeoJSON with the attributes of a survey. */
 export function soilMap(ground: Ground): DemoFile {
-  const { anchor, minX, minY, maxX, maxY } = frameOf();
+  const { anchor, minX, minY, maxX, maxY } = frameOf(ground.place);
   const cell = 20;
   const classes = [
     { name: 'Shallow marl', holdsMm: 62, from: 0, to: 0.85 },
@@ -136,7 +137,7 @@ export function soilMap(ground: Ground): DemoFile {
         const within = x < maxX && depth >= soil.from && depth < soil.to;
         if (within && runStart === null) runStart = x;
         if (!within && runStart !== null) {
-          polygons.push([[[runStart, y], [x, y], [x, y + cell], [runStart, y + cell], [runStart, y]].map(([px, py]) => [...fromUtm([anchor[0] + px!, anchor[1] + py!], estate.epsg)].map((value) => Number(value.toFixed(8))))]);
+          polygons.push([[[runStart, y], [x, y], [x, y + cell], [runStart, y + cell], [runStart, y]].map(([px, py]) => [...fromUtm([anchor[0] + px!, anchor[1] + py!], ground.place.epsg)].map((value) => Number(value.toFixed(8))))]);
           runStart = null;
         }
       }

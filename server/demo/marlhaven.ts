@@ -1,13 +1,7 @@
 import type { Role } from '../../shared/catalog/roles.ts';
 
-/** The demo estate: an invention, laid on an empty hillside. Positions are metres east and north of the anchor. */
-export const estate = {
-  name: 'Marlhaven',
-  country: 'Invented',
-  timeZone: 'Europe/Paris',
-  anchorLonLat: [2.4012, 43.0978] as const,
-  epsg: 32631,
-};
+/** The demo estate: an invention, laid on an empty hillside. Positions are metres east and north of the anchor of its place. */
+export const estate = { name: 'Marlhaven', country: 'Invented' };
 
 /** How the vines of a block really lie; the program has to find out. */
 export type Truth = 'threeSteps' | 'twoSteps' | 'slope' | 'even';
@@ -80,11 +74,12 @@ export const people: readonly DemoPerson[] = [
 
 export const tanks = [
   { name: 'T1', litres: 32_000, workingFill: 0.8, minimumFill: 0.5 },
-  { name: 'T2', litres: 24_000, workingFill: 0.8, minimumFill: 0.5 },
-  { name: 'T3', litres: 18_000, workingFill: 0.85, minimumFill: 0.5 },
-  { name: 'T4', litres: 14_000, workingFill: 0.8, minimumFill: 0.4 },
-  { name: 'W1', litres: 12_000, workingFill: 0.9, minimumFill: 0.6 },
-  { name: 'W2', litres: 8_000, workingFill: 0.9, minimumFill: 0.6 },
+  { name: 'T2', litres: 48_000, workingFill: 0.8, minimumFill: 0.5 },
+  { name: 'T3', litres: 28_000, workingFill: 0.85, minimumFill: 0.5 },
+  { name: 'T4', litres: 18_000, workingFill: 0.8, minimumFill: 0.4 },
+  { name: 'W1', litres: 12_000, workingFill: 0.9, minimumFill: 0.5 },
+  { name: 'W2', litres: 8_000, workingFill: 0.9, minimumFill: 0.5 },
+  { name: 'W3', litres: 5_500, workingFill: 0.9, minimumFill: 0.4 },
 ] as const;
 
 export const demoPassword = 'patchrow-demo';

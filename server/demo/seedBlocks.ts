@@ -3,6 +3,7 @@ import { randomIndex, seededRandom } from '../../shared/analysis/random.ts';
 import { loadBlockVines, type BlockVines } from '../ground/blockVines.ts';
 import { createBlock } from '../services/blocks/change.ts';
 import { changeCensus } from '../services/blocks/census.ts';
+import type { DemoPlace } from './demoPlace.ts';
 import { outlineLonLat } from './layerFiles.ts';
 import { blocks, type DemoBlock } from './marlhaven.ts';
 import type { DemoEstate } from './seedEstate.ts';
@@ -13,12 +14,12 @@ export interface LaidBlock {
 }
 
 /** Blocks with rows and a census: two to four percent of the places are empty, replanted or of another variety. */
-export async function seedBlocks(made: DemoEstate, now: Date): Promise<LaidBlock[]> {
+export async function seedBlocks(made: DemoEstate, place: DemoPlace, now: Date): Promise<LaidBlock[]> {
   const access = { estateId: made.estateId, personId: made.personOf('agronomist'), roles: ['agronomist' as const, 'manager' as const] };
   const laid: LaidBlock[] = [];
   for (const [index, demo] of blocks.entries()) {
     const { name, variety, rootstock, plantedYear, rowBearingDeg, rowSpacingM, vineSpacingM, headlandM } = demo;
-    const input = newBlock.parse({ name, variety, rootstock, plantedYear, rowBearingDeg, rowSpacingM, vineSpacingM, headlandM, startPostColour: demo.startPost, endPostColour: demo.endPost, trellis: 'Two wires, steel posts', boundary: { type: 'Polygon', coordinates: [outlineLonLat(demo)] } });
+    const input = newBlock.parse({ name, variety, rootstock, plantedYear, rowBearingDeg, rowSpacingM, vineSpacingM, headlandM, startPostColour: demo.startPost, endPostColour: demo.endPost, trellis: 'Two wires, steel posts', boundary: { type: 'Polygon', coordinates: [outlineLonLat(demo, place)] } });
     const block = await createBlock(access, input, now);
     const ground = await loadBlockVines(made.estateId, block.id);
     await changeCensus(access, block.id, { marks: censusMarks(ground, index + 11), complete: demo.key !== 'marl' }, now);

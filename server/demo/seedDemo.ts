@@ -1,5 +1,6 @@
 import { Estate } from '../models/Estate.ts';
 import { demoDays } from './demoDays.ts';
+import { placeOn } from './demoPlace.ts';
 import { makeGround } from './ground.ts';
 import { seedBlocks } from './seedBlocks.ts';
 import { seedEstate } from './seedEstate.ts';
@@ -17,26 +18,29 @@ const groundSeed = 7;
 export type SeedStep = 'estate' | 'blocks' | 'layers' | 'fruit' | 'zones' | 'plans' | 'lots' | 'harvest';
 
 /**
- * Lays the demo estate unless there is one. The same seed gives the same estate; its calendar is laid around today.
+ * Lays the demo estate unless there is one. The same seed gives the same estate; its calendar is laid around today, and
+ * its place is one where fruit ripens today.
  * Needs the compute pool and the file store open. Returns false when the demo estate was there already.
  */
 export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (step: SeedStep) => void }): Promise<boolean> {
   const step = options.onStep ?? (() => undefined);
   if (options.reset) await eraseDemo();
   else if (await Estate.query().findOne({ isDemo: true })) return false;
-  const days = demoDays(options.now.toISOString().slice(0, 10));
-  const ground = makeGround(groundSeed);
+  const today = options.now.toISOString().slice(0, 10);
+  const days = demoDays(today);
+  const place = placeOn(today);
+  const ground = makeGround(groundSeed, place);
   try {
     step('estate');
-    const made = await seedEstate(days);
+    const made = await seedEstate(days, place);
     step('blocks');
-    const laid = await seedBlocks(made, options.now);
+    const laid = await seedBlocks(made, place, options.now);
     step('layers');
     await seedLayers(made, ground, days);
     step('fruit');
     await seedFruit(made, laid, { ground, days });
     step('zones');
-    await seedZones(made, laid, options.now);
+    await seedZones(made, laid, days.at(-55, 9));
     step('plans');
     await seedPlans(made, laid, { days, now: options.now });
     await seedField(made, { days, now: options.now });
@@ -44,7 +48,7 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     step('lots');
     await seedLots(made, days);
     step('harvest');
-    await seedHarvest(made, { days, now: options.now });
+    await seedHarvest(made, { days, place, now: options.now });
   } catch (error) {
     // Half a demo would look like a broken estate; the next start lays it anew.
     await eraseDemo();

@@ -5,6 +5,7 @@ import { isBearing } from '../ground/blockVines.ts';
 import { fromGeoJson } from '../models/geometry.ts';
 import { Reading } from '../models/Reading.ts';
 import type { DemoDays } from './demoDays.ts';
+import type { DemoPlace } from './demoPlace.ts';
 import type { Ground } from './ground.ts';
 import { frameOf } from './layerFiles.ts';
 import type { LaidBlock } from './seedBlocks.ts';
@@ -46,7 +47,7 @@ export async function seedFruit(made: DemoEstate, laid: readonly LaidBlock[], op
     const vigour = options.ground.vigour(block.demo);
     const random = seededRandom(700 + index);
     const rows = visits.flatMap((visit) =>
-      drawVines(block, visit.vines, random).flatMap(({ vine, x, y, position }) =>
+      drawVines(block, options.ground.place, { count: visit.vines, random }).flatMap(({ vine, x, y, position }) =>
         visit.measures.map((measureCode) => ({
           id: randomUUID(),
           estateId: made.estateId,
@@ -71,8 +72,8 @@ export async function seedFruit(made: DemoEstate, laid: readonly LaidBlock[], op
   }
 }
 
-function drawVines({ ground }: LaidBlock, count: number, random: Random) {
-  const { anchor } = frameOf();
+function drawVines({ ground }: LaidBlock, place: DemoPlace, { count, random }: { count: number; random: Random }) {
+  const { anchor } = frameOf(place);
   const chosen = new Set<number>();
   while (chosen.size < count) {
     const vine = randomIndex(random, ground.vines.count);

@@ -56,7 +56,7 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   });
 
   router.get('/tickets', allow('lots.see', 'read'), async (request, response) => {
-    const items = await listTickets(accessOf(request));
+    const items = await listTickets(accessOf(request), today());
     response.json({ items, total: items.length });
   });
   router.post('/tickets', allow('tickets.enter'), async (request, response) => {

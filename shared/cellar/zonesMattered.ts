@@ -22,6 +22,7 @@ export interface ZonesCompared {
   readonly halfWidth: number | null;
   /** Of no difference at all; null where it cannot be told. */
   readonly p: number | null;
+  /** The means differ by more than luck as a whole, and so do the highest and the lowest by their own range. */
   readonly differ: boolean | null;
   /** Smallest difference that would have been seen with these readings. */
   readonly detectable: number | null;
@@ -38,7 +39,9 @@ export function zonesCompared(means: readonly ZoneMean[], { confidence, asked }:
   const canTest = means.every(({ n, sd }) => n >= 2 && sd >= 0) && means.some(({ sd }) => sd > 0);
   const p = canTest ? compareMeans(means.map(({ n, sd, estimate }) => ({ n, mean: estimate.value, variance: sd * sd }))).p : Number.NaN;
   const told = (value: number) => (Number.isNaN(value) ? null : value);
-  return { lowest: low.zone, highest: high.zone, difference: gap.value, halfWidth: told(half), p: told(p), differ: Number.isNaN(p) ? null : p < level, detectable: told(half) };
+  // Both must say so: a difference whose printed range holds 0 would contradict its own verdict.
+  const differ = Number.isNaN(p) ? null : p < level && (Number.isNaN(half) || gap.value > half);
+  return { lowest: low.zone, highest: high.zone, difference: gap.value, halfWidth: told(half), p: told(p), differ, detectable: told(half) };
 }
 
 export type ZoneVerdict = 'keep' | 'merge' | 'retire' | 'notRead' | 'oneZone';

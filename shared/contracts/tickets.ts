@@ -113,7 +113,8 @@ const zoneQuestion = z.object({
   measures: z.array(compared),
   lastSeason: z.boolean().nullable(),
   /** Lots that its zones went to; one means that they were picked together all the same. */
-  lots: z.number().int(),
+  /** Every vine of its zones was picked into the same lot. */
+  oneLot: z.boolean(),
   readings: z.number().int(),
   /** Hours at the vine for these readings, without the walk; reckoned from the seconds a sample takes. */
   hours: z.number(),

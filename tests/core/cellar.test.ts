@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { convertAcidity } from '../../shared/cellar/acidity.ts';
-import { potentialAlcohol } from '../../shared/cellar/alcohol.ts';
+import { ALCOHOL_SETTINGS, potentialAlcohol } from '../../shared/cellar/alcohol.ts';
 import { reviewForecasts } from '../../shared/cellar/forecastReview.ts';
 import { lotLikeness } from '../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../shared/cellar/lots.ts';
@@ -69,6 +69,17 @@ describe('potential alcohol', () => {
     const at22 = potentialAlcohol(sugar(22), 'brixFactor');
     expectRelative(at22.low, 12.1, 1e-12);
     expectRelative(at22.high, 13.64, 1e-12);
+  });
+
+  it('takes any factor of the published range', () => {
+    // 24 and 22 °Brix by 0.55, 0.57, 0.59, 0.60, 0.62: worked by hand
+    const by = (brix: number, factor: number) => potentialAlcohol(sugar(brix), 'brixFactor', { ...ALCOHOL_SETTINGS, perBrix: { low: factor, middle: factor, high: factor } }).middle;
+    const factors = [0.55, 0.57, 0.59, 0.6, 0.62];
+    [13.2, 13.68, 14.16, 14.4, 14.88].forEach((percent, at) => expectRelative(by(24, factors[at]!), percent, 1e-12));
+    [12.1, 12.54, 12.98, 13.2, 13.64].forEach((percent, at) => expectRelative(by(22, factors[at]!), percent, 1e-12));
+    // 240 g/L over 17 g/L for 1 %: worked by hand
+    const at17 = { ...ALCOHOL_SETTINGS, sugarPerPercent: { low: 17, middle: 17, high: 17 } };
+    expect(potentialAlcohol(sugar(240), 'measuredSugar', at17).middle).toBeCloseTo(14.1176, 4);
   });
 
   it('divides measured sugar by 16.83', () => {

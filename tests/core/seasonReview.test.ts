@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { letterSentences, type SeasonLetter } from '../../server/exporters/report/seasonLetter.ts';
+import { letterParts, type SeasonLetter } from '../../server/exporters/report/seasonLetter.ts';
 import { seededRandom } from '../../shared/analysis/random.ts';
 import { errorParts } from '../../shared/cellar/errorParts.ts';
 import { learnFactor, nextLot } from '../../shared/cellar/learnFactor.ts';
@@ -53,6 +53,16 @@ describe('whether zones mattered', () => {
     expect(close.halfWidth).toBeCloseTo(0.8467, 3);
   });
 
+  it('calls zones different only when the range that is printed leaves no difference out', () => {
+    // Four zones: the variance ratio is significant, but six pairs are asked, and the widest gap has a range over 0.
+    // F = 4.51 on 3 and 44; both densities integrated by a script of its own (Simpson): p 0.00763763, t(22) 3.487973.
+    const four = zonesCompared([mean(1, 22), mean(2, 22), mean(3, 23.3), mean(4, 22.4)], { confidence: 0.95, asked: 4 });
+    expect(four.p!).toBeCloseTo(0.00763763, 6);
+    expect(four.halfWidth!).toBeCloseTo(1.423959, 4);
+    expect(four.difference).toBeLessThan(four.halfWidth!);
+    expect(four.differ).toBe(false);
+  });
+
   it('keeps, merges or retires, and says when it cannot tell', () => {
     expect(zoneVerdict({ zones: 3, thisSeason: true, lastSeason: false })).toBe('keep');
     expect(zoneVerdict({ zones: 3, thisSeason: false, lastSeason: null })).toBe('merge');
@@ -68,7 +78,7 @@ describe('the season letter', () => {
   const letter: SeasonLetter = {
     language: 'en', size: 'A4', units: 'metric', now: new Date('2026-12-01T12:00:00Z'), timeZone: 'UTC', estateName: 'Low House', seasonName: '2026',
     block: {
-      blockId: 'b', blockName: 'West Plot', zones: 2, lastSeason: null, lots: 1, readings: 240, hours: 5.2, errorParts: [], verdict: 'merge', sugar: { taken: 40, needed: 24 },
+      blockId: 'b', blockName: 'West Plot', zones: 2, lastSeason: null, oneLot: true, readings: 240, hours: 5.2, errorParts: [], verdict: 'merge', sugar: { taken: 40, needed: 24 },
       measures: [{ measure: 'brix', unit: '°Brix', on: '2026-09-14', n: 40, lowest: 1, highest: 2, least: 22.1, most: 22.4, difference: 0.3, halfWidth: 0.8, p: 0.4, differ: false, betweenShare: 0.02 }],
     },
     zones: [1, 2].map((zone) => ({ blockId: 'b', blockName: 'West Plot', zone, forecastOn: '2026-08-20', forecast: figure(10, 3), actualT: 11, how: 'shared' as const, held: true })),
@@ -76,7 +86,7 @@ describe('the season letter', () => {
   };
 
   it('says what was expected, what came, what it cost and what to do less of', () => {
-    const said = letterSentences(letter);
+    const said = letterParts(letter).flat();
     expect(said[0]).toBe('On 20 August 2026 20.0 ± 4.2 t were expected from the zones that were weighed; 22.0 t came over the scale. The range held.');
     expect(said).toContain('No difference could be told this season. Consider one block, and test once more before you give the zones up.');
     expect(said).toContain('All of it was picked into one lot, so the zones made no wine of their own.');
@@ -85,7 +95,7 @@ describe('the season letter', () => {
   });
 
   it('does not pretend to a test that was not made', () => {
-    expect(letterSentences({ ...letter, zones: [], errorParts: [] })[0]).toBe('Nothing was weighed for this block, so the forecast was not tested.');
+    expect(letterParts({ ...letter, zones: [], errorParts: [] })[0]![0]).toBe('Nothing was weighed for this block, so the forecast was not tested.');
   });
 });
 

@@ -28,26 +28,26 @@ export async function seasonLetter(letter: SeasonLetter): Promise<Buffer> {
   page.font('bold').fontSize(18).text(printable(title), margin, margin).font('plain');
   page.fontSize(9).fillColor(faint).text(printable(filled(texts.line, { estate: letter.estateName, season: letter.seasonName, day: dayText(letter, letter.now) })), { width: innerWidth(page) });
   page.moveDown(0.6);
-  for (const sentence of letterSentences(letter)) {
-    paragraph(page, sentence);
-    page.moveDown(0.35);
+  for (const part of letterParts(letter)) {
+    paragraph(page, part.join(' '));
+    page.moveDown(0.6);
   }
   page.moveDown(0.8).fontSize(8).fillColor(faint).text(printable(texts.caution), margin, page.y, { width: innerWidth(page) });
   return closePage(page);
 }
 
-/** The letter's sentences in order. */
-export function letterSentences(letter: SeasonLetter): string[] {
+/** The letter's sentences, paragraph by paragraph: what came, whether the zones told it apart, what it cost to know. */
+export function letterParts(letter: SeasonLetter): string[][] {
   const texts = seasonLetterTexts[letter.language];
   const { block } = letter;
-  const said = [...weighedSentences(letter), ...block.measures.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: texts.measure[measure.measure as keyof typeof texts.measure], difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
-  if (block.zones > 1 && block.lots === 1) said.push(texts.oneLot);
-  said.push(filled(texts.cost, { hours: figure(letter, block.hours, 0), readings: figure(letter, block.readings, 0) }));
+  const zones = [...block.measures.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: texts.measure[measure.measure as keyof typeof texts.measure], difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
+  if (block.zones > 1 && block.oneLot) zones.push(texts.oneLot);
+  const cost = [filled(texts.cost, { hours: figure(letter, block.hours, 0), readings: figure(letter, block.readings, 0) })];
   if (block.sugar) {
     const { taken, needed } = block.sugar;
-    said.push(filled(taken > needed * (1 + worthAWord) ? texts.less : taken < needed * (1 - worthAWord) ? texts.more : texts.right, { taken, needed }));
+    cost.push(filled(taken > needed * (1 + worthAWord) ? texts.less : taken < needed * (1 - worthAWord) ? texts.more : texts.right, { taken, needed }));
   }
-  return said;
+  return [weighedSentences(letter), zones, cost];
 }
 
 function weighedSentences(letter: SeasonLetter): string[] {

@@ -38,7 +38,7 @@ export function withoutTonnesDifferences(differences: readonly NoticeDifference[
 /** The notice as plain text in the reader's language: what it replaces and what changed come first. */
 export function noticeText(body: NoticeBody, how: { language: string; replacesNumber: number | null; differences: readonly NoticeDifference[] }): string {
   const texts = textsIn(how.language);
-  const date = (day: string) => new Intl.DateTimeFormat(how.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+  const date = (day: string) => new Intl.DateTimeFormat(how.language === 'en' ? 'en-GB' : how.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
   const tonnes = (value: number) => new Intl.NumberFormat(how.language, { minimumFractionDigits: 1, maximumFractionDigits: 1 }).format(value);
   const shown = (what: string, value: string) => (what === 'pickOn' ? date(value) : what === 'tonnes' && value !== nothing ? `${tonnes(Number(value))} t` : value);
   const lines = [

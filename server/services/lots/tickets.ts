@@ -79,10 +79,11 @@ function requireSplitAddsUp(split: readonly TicketSplit[], netKg: number): void 
   if (Math.abs(sum - netKg) > splitToleranceKg) throw new Unusable('splitSum', `The split adds up to ${sum.toFixed(0)} kg, the net weight is ${netKg.toFixed(0)} kg. A split leaves the total as it is: change a part.`);
 }
 
-/** All tickets of the estate, newest first, with what corrects what. */
-export async function listTickets(access: Access): Promise<TicketView[]> {
+/** Tickets of the season's lots, newest first, with what corrects what. */
+export async function listTickets(access: Access, today: string): Promise<TicketView[]> {
   const { estateId } = access;
-  const rows = await ScaleTicket.query().where({ estateId }).orderBy('weighedAt', 'desc');
+  const { seasonId } = await findScenario(access, { scenarioId: null, today });
+  const rows = await ScaleTicket.query().where({ estateId }).whereIn('lotId', Lot.query().where({ estateId, seasonId }).select('id')).orderBy('weighedAt', 'desc');
   const [lots, blocks, people] = await Promise.all([
     Lot.query().where({ estateId }).select('id', 'name'),
     Block.query().where({ estateId }).select('id', 'name'),

@@ -19,13 +19,18 @@ export async function zoneQuestion(estateId: string, ground: BoardGround, block:
   const measures = [...fruit.flatMap((code) => compareFruit(ground, block, code) ?? []), ...(compareYield(block) ?? [])];
   const thisSeason = judged(measures);
   const lastSeason = thisSeason === false ? await judgedBefore(estateId, ground, block) : null;
-  const lots = new Set([...block.lotOf].filter((lot) => lot >= 0)).size;
   const taken = block.readings.filter(({ zone, excludedReason }) => zone > 0 && excludedReason === null);
   const seconds = taken.reduce((sum, { measureCode }) => sum + (ground.measures.find(({ code }) => code === measureCode)?.secondsPerSample ?? 0), 0);
   return {
-    blockId: block.ground.block.id, blockName: block.ground.block.name, zones: block.zones.length, measures, lastSeason, lots,
+    blockId: block.ground.block.id, blockName: block.ground.block.name, zones: block.zones.length, measures, lastSeason, oneLot: wentIntoOneLot(ground, block),
     readings: taken.length, hours: seconds / 3600, sugar: sugarReadings(ground, block), verdict: zoneVerdict({ zones: block.zones.length, thisSeason, lastSeason }),
   };
+}
+
+/** True when every vine of the zones was picked into the same lot. */
+function wentIntoOneLot({ lots }: BoardGround, { zoneOf, lotOf }: BoardBlock): boolean {
+  const holders = [...new Set([...lotOf].filter((_, vine) => zoneOf[vine]! > 0))];
+  return holders.length === 1 && lots[holders[0]!]?.state === 'picked';
 }
 
 /** Readings of sugar on the newest visit, and how many its margin would have taken; null while it was not read. */

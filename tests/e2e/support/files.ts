@@ -1,10 +1,13 @@
 import { zipSync } from 'fflate';
 import { makeGround } from '../../../server/demo/ground.ts';
 import { frameOf } from '../../../server/demo/layerFiles.ts';
-import { estate } from '../../../server/demo/marlhaven.ts';
+import { placeOn } from '../../../server/demo/demoPlace.ts';
 import { geoTiffBytes } from '../../../server/exporters/geoTiffBytes.ts';
 import { randomNormal, seededRandom } from '../../../shared/analysis/random.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
+
+/** Where the demo estate lies on the day of the test. */
+const place = placeOn(new Date().toISOString().slice(0, 10));
 
 export interface UploadFile {
   name: string;
@@ -16,8 +19,8 @@ export interface UploadFile {
 export const field = { west: 1180, south: 520, width: 150, height: 120 };
 
 export function corner(x: number, y: number): [number, number] {
-  const { anchor } = frameOf();
-  const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], estate.epsg);
+  const { anchor } = frameOf(place);
+  const [lon, lat] = fromUtm([anchor[0] + x, anchor[1] + y], place.epsg);
   return [Number(lon.toFixed(8)), Number(lat.toFixed(8))];
 }
 
@@ -41,18 +44,18 @@ export function vigourFile(): UploadFile {
       nearInfrared[row * width + col] = 3000 + (strong ? 1500 : 0) + 110 * randomNormal(random);
     }
   }
-  return { name: 'gate-vigour.tif', mimeType: 'image/tiff', buffer: geoTiffBytes({ width, height, bands: [red, nearInfrared], epsg: estate.epsg, originX, originY, pixelSize: 1, noData: 0 }) };
+  return { name: 'gate-vigour.tif', mimeType: 'image/tiff', buffer: geoTiffBytes({ width, height, bands: [red, nearInfrared], epsg: place.epsg, originX, originY, pixelSize: 1, noData: 0 }) };
 }
 
 export function elevationFile(): UploadFile {
   const { width, height, originX, originY } = frame(2);
-  const ground = makeGround(7);
+  const ground = makeGround(7, place);
   const metres = Float32Array.from({ length: width * height }, (_, pixel) => ground.elevationM(field.west - 10 + (pixel % width) * 2, field.south + field.height + 10 - Math.floor(pixel / width) * 2));
-  return { name: 'gate-elevation.tif', mimeType: 'image/tiff', buffer: geoTiffBytes({ width, height, bands: [metres], epsg: estate.epsg, originX, originY, pixelSize: 2, noData: -9999 }) };
+  return { name: 'gate-elevation.tif', mimeType: 'image/tiff', buffer: geoTiffBytes({ width, height, bands: [metres], epsg: place.epsg, originX, originY, pixelSize: 2, noData: -9999 }) };
 }
 
 function frame(pixel: number): { width: number; height: number; originX: number; originY: number } {
-  const { anchor } = frameOf();
+  const { anchor } = frameOf(place);
   return { width: (field.width + 20) / pixel, height: (field.height + 20) / pixel, originX: anchor[0] + field.west - 10, originY: anchor[1] + field.south + field.height + 10 };
 }
 

@@ -68,6 +68,8 @@ export const fieldRow = z.object({
   vineCount: z.number().int(),
   runs: z.array(z.object({ zone: z.number().int(), from: z.number().int(), to: z.number().int() })),
   known: z.array(z.object({ ordinal: z.number().int(), state: vineState })),
+  /** Where first and last vine stand, for a rough place along the row. */
+  ends: z.tuple([lonLat, lonLat]).nullable().default(null),
 });
 export type FieldRow = z.infer<typeof fieldRow>;
 

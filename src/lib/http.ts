@@ -80,6 +80,8 @@ interface Sending {
 }
 
 async function send(method: Method, path: string, { options, body }: Sending, retried = false): Promise<Response> {
+  // A screen that opened from what the device holds has no token yet.
+  if (method !== 'GET' && csrfToken === '' && !retried) await isTokenRenewed();
   const response = await reach(addressOf(path, options.query), {
     method,
     credentials: 'same-origin',

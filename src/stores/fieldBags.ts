@@ -12,6 +12,8 @@ export interface LabelUse {
   readonly row: string | null;
   readonly person: string | null;
   readonly at: string | null;
+  /** A vine of the bag that carries it, where this phone closed it. */
+  readonly vine: { readonly rowId: string } | null;
 }
 
 /** Bags as they are closed in the row. */
@@ -36,7 +38,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
 
   function usedBy(code: string): LabelUse | null {
     const other = others.value.find((line) => line.code === code && line.place !== 'void' && line.closedAt !== null);
-    return other ? { row: other.rowLabel, person: other.holder, at: other.closedAt } : null;
+    return other ? { row: other.rowLabel, person: other.holder, at: other.closedAt, vine: null } : null;
   }
 
   /** Keeps a closed bag on the phone, to be sent with the rest. Answers where the label is bound already, if it is. */
@@ -48,7 +50,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
     const bag: NewBag = { ...facts, id, state: 'closed', roundId: owner.roundId, zoneId: null, closedAt: at, deviceTime: null, deviceId: deviceId() };
     const holder = await addBag({ ...owner, id, zone, code: closed.code, bag, at, received: 0, outcome: null });
     await look(owner.roundId);
-    return holder ? { row: null, person: null, at: holder.at } : null;
+    return holder ? { row: null, person: null, at: holder.at, vine: holder.bag.vines[0] ?? null } : null;
   }
 
   return { bags, load, look, close };

@@ -5,7 +5,7 @@ import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { PlanList } from '../../shared/contracts/plans.ts';
 import type { ReadingView } from '../../shared/contracts/readings.ts';
 import { startApplication, type Application } from './support/application.ts';
-import { heldBy, keepOld, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
+import { asksOf, heldBy, keepOld, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
 
 const names = ['Ana Reed', 'Ben Moor', 'Cleo Lane'];
 const pin = '4711';
@@ -15,7 +15,10 @@ let office: Office;
 let roundId: string;
 let code: string;
 const phones: { page: Page; context: BrowserContext }[] = [];
-let cleo: Awaited<ReturnType<typeof heldBy>>;
+let [ana, ben, cleo]: (Awaited<ReturnType<typeof heldBy>> | undefined)[] = [];
+
+/** A value within the usual range of a measure, different at each place. */
+const usual = (code: string, at: number): number => (code === 'clusterCount' ? 20 + at : (50 + at) / 100);
 
 beforeAll(async () => {
   app = await startApplication();
@@ -25,7 +28,7 @@ beforeAll(async () => {
   for (const name of names) people.push((await office.post<{ id: string }>('/crew', { name, pin })).id);
   const { zonings } = await office.get<PlanList>('/plans');
   const zoning = zonings.find(({ blockName }) => /Furrow/.test(blockName)) ?? zonings[0]!;
-  const measures = ['clusterCount', 'pruningWeight'].map((measure) => ({ code: measure, margin: 0.08, marginKind: 'relative', confidence: 0.95 }));
+  const measures = ['clusterCount', 'pruningWeight'].map((measure) => ({ code: measure, margin: 0.075, marginKind: 'relative', confidence: 0.95 }));
   const plan = await office.post<{ id: string }>(`/zonings/${zoning.id}/plans`, { name: 'Whole day', measures, seed: 4 });
   await office.post(`/plans/${plan.id}/lock`);
   roundId = (await office.post<{ id: string }>(`/plans/${plan.id}/rounds`, { onDate: new Date().toISOString().slice(0, 10), people })).id;
@@ -64,36 +67,65 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.close();
   });
 
-  it('Ana types by taps without signal: a value, an odd one kept by two taps, a missing vine and its reserve, an undo', async () => {
+  it('the phone’s place is asked for once, drawn as a wide circle, and neither kept nor sent', async () => {
+    const context = await app.browser.newContext({ locale: 'en-GB', viewport: { width: 390, height: 844 }, hasTouch: true, storageState: await phones[0]!.context.storageState(), serviceWorkers: 'block', permissions: ['geolocation'] });
+    const page = await context.newPage();
+    const sent: string[] = [];
+    page.on('request', (request) => sent.push(request.url(), request.postData() ?? ''));
+    await page.goto(phones[0]!.page.url());
+    await page.getByRole('button', { name: 'Start the walk' }).tap();
+    await page.getByRole('button', { name: 'I have read this' }).tap();
+    await page.getByRole('button', { name: 'Yes, show it' }).tap();
+    const { round } = await heldBy(page);
+    const row = round.rows.find(({ id }) => id === round.stops[0]!.rowId)!;
+    const [[lon, lat]] = row.ends!;
+    await context.setGeolocation({ longitude: lon, latitude: lat, accuracy: 3 });
+    await page.getByText(/Your place, roughly: near vine \d+ to \d+, in this row or one beside it/).waitFor();
+    expect(Number(await page.locator('circle.fog').getAttribute('r'))).toBeGreaterThan(40);
+    await context.setGeolocation({ longitude: lon + 0.01, latitude: lat, accuracy: 12 });
+    await page.getByText(/Your place, roughly: \d+ m or more from this row/).waitFor();
+    expect(await page.locator('circle.fog').count()).toBe(0);
+    await page.reload();
+    await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    const [east, kept] = [String(lon + 0.01).slice(0, 8), await page.evaluate(() => JSON.stringify(localStorage))];
+    expect([...sent, kept].filter((text) => text.includes(east))).toEqual([]);
+    await context.close();
+  });
+
+  it('Ana types by taps without signal: values, an odd one kept by two taps, a missing vine and its reserve, an undo', async () => {
     const [{ page, context }] = phones as [(typeof phones)[number]];
     await startWalk(page);
     await context.setOffline(true);
-    await keyIn(page, 24);
-    await keyIn(page, 0.62);
-    await keyIn(page, 999);
-    await page.getByRole('button', { name: 'Yes, keep it' }).tap();
-    await keyIn(page, 0.7);
+    const asks = asksOf((await heldBy(page)).round);
+    // Which vine is asked for what is drawn by lot; the third that has no reading yet when one comes to it is missing.
+    const missing = asks.findIndex(({ targetId }, at) => at >= 4 && targetId !== asks[at - 1]!.targetId);
+    const typed = asks.slice(0, missing + 1).map(({ code }, at) => (at === 2 ? 999 : usual(code, at)));
+    for (const [at, value] of typed.slice(0, missing).entries()) {
+      await keyIn(page, value);
+      if (at === 2) await page.getByRole('button', { name: 'Yes, keep it' }).tap();
+    }
     await page.getByRole('button', { name: 'Not this vine' }).tap();
     await page.getByRole('button', { name: 'Nothing, missing vine' }).tap();
     await page.getByText('Reserve vine').waitFor();
-    await keyIn(page, 33);
+    await keyIn(page, 4);
     await page.getByRole('button', { name: 'Undo' }).tap();
     await page.getByRole('button', { name: 'Erase' }).tap();
-    await page.getByRole('button', { name: 'Erase' }).tap();
-    await keyIn(page, 31);
-    await expect.poll(async () => (await heldBy(page)).readings.map(({ value }) => value)).toEqual([24, 0.62, 999, 0.7, 31]);
-    const keys = await page.locator('.pad button').evaluateAll((buttons) => buttons.map((button) => Math.min(button.getBoundingClientRect().width, button.getBoundingClientRect().height)));
+    await keyIn(page, typed[missing]!);
+    await expect.poll(async () => (await heldBy(page)).readings.map(({ value }) => value)).toEqual(typed);
+    expect((await heldBy(page)).readings.map(({ flags }) => flags.join())).toEqual(typed.map((_, at) => (at === 2 ? 'odd' : at === missing ? 'reserve' : '')));
+    const keys = await page.locator('.pad button, .acts button, .erase, .back').evaluateAll((buttons) => buttons.map((button) => Math.min(button.getBoundingClientRect().width, button.getBoundingClientRect().height)));
+    expect(keys.length).toBeGreaterThan(14);
     expect(Math.min(...keys)).toBeGreaterThanOrEqual(64);
   });
 
   it('taps that come faster than the phone writes belong to their own vine, and what cannot be written is said', async () => {
     const [{ page }] = phones as [(typeof phones)[number]];
-    const first = await heldBy(page);
-    const asked = first.round.stops.flatMap((stop) => first.round.measures.filter(({ code }) => stop.measures.includes(code)).map(({ code }) => `${stop.targetId} ${code}`)).slice(5, 8);
-    const typed = asked.map((place, at) => `${place} ${place.endsWith('clusterCount') ? 20 + at : 0.5 + at / 10}`);
-    await tapFast(page, typed.map((line) => line.split(' ')[2]!));
-    await expect.poll(async () => (await heldBy(page)).readings.slice(5).map(({ targetId, measureCode, value }) => `${targetId} ${measureCode} ${value}`)).toEqual(typed);
-    expect((await storedBy(page)).filter(({ kind }) => kind === 'reading')).toHaveLength(8);
+    const { readings: before, round } = await heldBy(page);
+    const typed = asksOf(round).slice(before.length, before.length + 3).map(({ targetId, code }, at) => ({ targetId, measureCode: code, value: usual(code, at + 20) }));
+    await tapFast(page, typed.map(({ value }) => String(value)));
+    await expect.poll(async () => (await heldBy(page)).readings.slice(before.length).map(({ targetId, measureCode, value }) => ({ targetId, measureCode, value }))).toEqual(typed);
+    const stored = async () => (await storedBy(page)).filter(({ kind }) => kind === 'reading').length;
+    expect(await stored()).toBe(before.length + 3);
     // The phone has no room left.
     await page.evaluate(() => {
       const add = IDBObjectStore.prototype.add;
@@ -102,14 +134,14 @@ describe('a day of three phones without signal, one of which is lost', () => {
         throw new DOMException('No room.', 'QuotaExceededError');
       };
     });
-    const before = await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent();
+    const place = await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent();
     await keyIn(page, 1);
     await page.getByText('This phone could not keep it.').waitFor();
-    expect(await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent()).toBe(before);
-    expect((await heldBy(page)).readings).toHaveLength(8);
+    expect(await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent()).toBe(place);
+    expect((await heldBy(page)).readings).toHaveLength(before.length + 3);
     await page.getByRole('button', { name: 'Save and next' }).tap();
     await page.getByText('This phone could not keep it.').waitFor({ state: 'detached' });
-    expect((await storedBy(page)).filter(({ kind }) => kind === 'reading')).toHaveLength(9);
+    expect(await stored()).toBe(before.length + 4);
   });
 
   it('with a signal that never answers the phone opens at once, and the walk goes on', async () => {
@@ -138,6 +170,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(after.waiting).toBe(before.waiting);
     await recordMany(page, 1000);
     await page.getByText('The walk is done.').waitFor();
+    ana = await heldBy(page);
     await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
     await page.getByText('You cannot sign out yet.').waitFor();
   });
@@ -165,6 +198,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.setOffline(true);
     await recordMany(page, 1000);
     expect(await recordMany(page, 6, { others: true })).toBe(6);
+    ben = await heldBy(page);
   });
 
   it('Cleo’s phone sends half of her walk and is never seen again', async () => {
@@ -176,7 +210,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.setOffline(true);
     await recordMany(page, 1000);
     cleo = await heldBy(page);
-    expect(cleo.waiting).toBe(cleo.readings.length - 20);
+    expect(cleo.waiting).toBe(cleo!.readings.length - 20);
     await context.close();
   });
 
@@ -238,9 +272,9 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await page.locator('input[data-place]').first().waitFor();
     await page.unroute(`**/rounds/${roundId}?person=*`);
     expect(await page.getByText(/received already/).count()).toBe(20);
-    const value = (targetId: string, measureCode: string) => cleo.readings.find((reading) => reading.targetId === targetId && reading.measureCode === measureCode)!.value;
+    const value = (targetId: string, measureCode: string) => cleo!.readings.find((reading) => reading.targetId === targetId && reading.measureCode === measureCode)!.value;
     for (const measure of ['clusterCount', 'pruningWeight']) {
-      const asked = cleo.round.stops.filter((stop) => stop.measures.includes(measure));
+      const asked = cleo!.round.stops.filter((stop) => stop.measures.includes(measure));
       await page.locator(`input[data-place$=" ${measure}"]`).first().focus();
       for (const stop of asked) {
         await page.keyboard.insertText(String(value(stop.targetId, measure) + (stop === asked[1] && measure === 'clusterCount' ? 5 : 0)));
@@ -252,15 +286,15 @@ describe('a day of three phones without signal, one of which is lost', () => {
     // Opened anew, the sheet knows what was saved, and offers nothing to save twice.
     await page.reload();
     await page.getByText(names[2]!, { exact: true }).click();
-    await page.locator(`input[aria-label$="row ${cleo.round.stops[0]!.rowLabel}, vine ${cleo.round.stops[0]!.vineNumber}"]`).first().waitFor();
+    await page.locator(`input[aria-label$="row ${cleo!.round.stops[0]!.rowLabel}, vine ${cleo!.round.stops[0]!.vineNumber}"]`).first().waitFor();
     await page.getByText('Nothing new to save').waitFor();
-    const first = cleo.round.stops.find(({ measures }) => measures.includes('clusterCount'))!;
+    const first = cleo!.round.stops.find(({ measures }) => measures.includes('clusterCount'))!;
     expect(await page.locator('input[data-place$=" clusterCount"]').first().inputValue()).toBe(String(value(first.targetId, 'clusterCount')));
   });
 
   it('every reading is there exactly once, and what differs is listed', async () => {
     const all = await readings();
-    const asked = [...cleo.round.stops, ...cleo.round.others.flatMap(({ stops }) => stops)].reduce((sum, { measures }) => sum + measures.length, 0);
+    const asked = [...cleo!.round.stops, ...cleo!.round.others.flatMap(({ stops }) => stops)].reduce((sum, { measures }) => sum + measures.length, 0);
     expect(asked).toBeGreaterThanOrEqual(200);
     // Six of Ben's beside Ana's, and one line of Cleo's sheet beside what her phone had sent.
     expect(all.filter(({ excludedReason }) => excludedReason === null)).toHaveLength(asked + 6 + 1);
@@ -271,8 +305,10 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(bags).toMatchObject([{ code: 'BBBBCV', place: 'expected', holder: names[0] }]);
     const items = (await office.get<ConflictList>('/conflicts')).items.filter(({ readings: both }) => both.some(({ who }) => names.includes(who ?? '')));
     expect(items).toHaveLength(7);
-    // Ana read the reserve of her third vine, which she found missing, for both measures; Ben read what he found there.
-    expect(items.map(({ kind }) => kind).sort()).toEqual([...Array.from({ length: 2 }, () => 'sameTarget'), ...Array.from({ length: 5 }, () => 'sameVine')]);
+    // Ana read the reserve of a vine that she found missing; Ben read what he found there.
+    const onReserve = ana!.readings.filter(({ flags, targetId, measureCode }) => flags.includes('reserve') && ben!.readings.some((other) => other.targetId === targetId && other.measureCode === measureCode)).length;
+    expect(items.filter(({ kind }) => kind === 'sameTarget')).toHaveLength(onReserve);
+    expect(items.filter(({ kind }) => kind === 'sameVine')).toHaveLength(7 - onReserve);
     expect(items.every(({ readings: both }) => both.length === 2)).toBe(true);
   });
 

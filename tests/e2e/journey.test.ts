@@ -113,6 +113,7 @@ describe('from a vigour image to a pick lot', () => {
     await page.getByText('Gate Field').first().waitFor({ timeout: 60_000 });
     await page.locator('section', { has: page.getByRole('heading', { name: 'Gate Field' }) }).getByRole('button', { name: 'Start the walk' }).click();
     await page.getByRole('button', { name: 'I have read this' }).click();
+    await page.getByRole('button', { name: 'No, leave it off' }).click();
     await page.getByText(/^Row \d+, vine \d+/).first().waitFor();
     await expectAccessible(page);
     const before = await page.getByText(/^Row \d+, vine \d+/).first().innerText();

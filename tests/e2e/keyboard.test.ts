@@ -161,6 +161,7 @@ describe('without a mouse', () => {
     await crew.page.getByRole('button', { name: 'Start the walk' }).first().waitFor();
     await press(crew.page, /^Start the walk$/);
     await press(crew.page, /^I have read this$/);
+    await press(crew.page, /^No, leave it off$/);
     const place = crew.page.getByText(/^Row \d+, vine \d+/).first();
     const before = await place.innerText();
     await press(crew.page, /^2$/);

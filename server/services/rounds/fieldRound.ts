@@ -2,6 +2,7 @@ import { estateSettings } from '../../../shared/contracts/estate.ts';
 import type { PlanBasis } from '../../../shared/contracts/plans.ts';
 import type { FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
+import { fromUtm } from '../../../shared/geo/utm.ts';
 import { firstOrdinal } from '../../../shared/geo/vines.ts';
 import { headOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
@@ -84,9 +85,16 @@ async function fieldRows(estateId: string, { ground, plan, basis }: { ground: Bl
     }
     return {
       id: row.id, label: row.label, firstOrdinal: firstOrdinal(ground.rows.rows[index]!), vineCount: row.vineCount, known,
+      ends: from < to ? [placeOf(ground, from), placeOf(ground, to - 1)] : null,
       runs: runs.filter(({ rowIndex }) => rowIndex === index).map(({ label, fromOrdinal, toOrdinal }) => ({ zone: label, from: fromOrdinal, to: toOrdinal })),
     };
   });
+}
+
+/** To a tenth of a metre: a phone is worse, and a day's work stays small. */
+function placeOf({ vines, block }: BlockVines, index: number): [number, number] {
+  const [lon, lat] = fromUtm([vines.x[index]!, vines.y[index]!], block.epsg);
+  return [Number(lon.toFixed(6)), Number(lat.toFixed(6))];
 }
 
 /** A stop with the vine's words; a vine whose row has gone since is left out of the walk. */

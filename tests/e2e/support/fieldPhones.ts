@@ -41,10 +41,11 @@ export async function openPhone(app: Application, crew: { code: string; name: st
   return { page, context };
 }
 
-/** Begins the walk and puts the day's safety card away. */
+/** Begins the walk, puts the day's safety card away and keeps the phone's place to oneself. */
 export async function startWalk(page: Page): Promise<void> {
   await page.getByRole('button', { name: /Start the walk|Go on/ }).click();
   await page.getByRole('button', { name: 'I have read this' }).click();
+  await page.getByRole('button', { name: 'No, leave it off' }).click();
 }
 
 /** Presses the keys of a value and saves it, as a thumb would. */
@@ -111,10 +112,22 @@ export function keepOld(page: Page, old: readonly OldEntry[]): Promise<void> {
   }), old);
 }
 
+export interface HeldReading {
+  targetId: string;
+  measureCode: string;
+  value: number;
+  flags: readonly string[];
+}
+
+/** What is to be read on a walk, vine by vine, as its keypad asks. */
+export function asksOf({ stops, measures }: FieldRound): { targetId: string; code: string }[] {
+  return stops.flatMap((stop) => measures.filter(({ code }) => stop.measures.includes(code)).map(({ code }) => ({ targetId: stop.targetId, code })));
+}
+
 interface FieldStore {
   round: FieldRound;
   waiting: number;
-  entries: readonly { id: string; kind: string; reading: { targetId: string; measureCode: string; value: number } | null }[];
+  entries: readonly { id: string; kind: string; reading: HeldReading | null }[];
   record: (stop: object, vine: object, typed: object) => Promise<void>;
   send: () => Promise<void>;
 }
@@ -139,9 +152,9 @@ export function recordMany(page: Page, most: number, options: { others?: boolean
 }
 
 /** What the phone holds of the open round. */
-export function heldBy(page: Page): Promise<{ waiting: number; readings: { targetId: string; measureCode: string; value: number }[]; round: FieldRound }> {
+export function heldBy(page: Page): Promise<{ waiting: number; readings: HeldReading[]; round: FieldRound }> {
   return page.evaluate(() => {
     const field = (document.querySelector('#app') as WithStore).__vue_app__.config.globalProperties.$pinia._s.get('field') as FieldStore;
-    return { waiting: field.waiting, readings: field.entries.flatMap(({ reading }) => (reading ? [{ targetId: reading.targetId, measureCode: reading.measureCode, value: reading.value }] : [])), round: JSON.parse(JSON.stringify(field.round)) as FieldRound };
+    return { waiting: field.waiting, readings: field.entries.flatMap(({ reading }) => (reading ? [{ targetId: reading.targetId, measureCode: reading.measureCode, value: reading.value, flags: [...reading.flags] }] : [])), round: JSON.parse(JSON.stringify(field.round)) as FieldRound };
   });
 }

@@ -71,6 +71,43 @@ describe('from results to the season’s review', () => {
     await context.close();
   });
 
+  it('moves a zone between lots by dragging, and looks at the lots as they stood', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/lots`);
+    const before = await board(page, estateId);
+    const [from, to] = before.lots.filter(({ state, lines }) => state === 'draft' && lines.length > 0);
+    const { zoneId } = from!.lines[0]!;
+    const part = page.locator(`[data-part="${zoneId}"]`).first();
+    const room = page.locator(`svg [data-drop="${to!.id}"] .room`);
+    await part.scrollIntoViewIfNeeded();
+    const [start, end] = [(await part.boundingBox())!, (await room.boundingBox())!];
+    await page.mouse.move(start.x + start.width / 2, start.y + start.height / 2);
+    await page.mouse.down();
+    await page.mouse.move(end.x + end.width / 2, end.y + end.height / 3, { steps: 8 });
+    await page.mouse.up();
+    const holder = async () => (await board(page, estateId)).lots.find(({ lines }) => lines.some((line) => line.zoneId === zoneId))!.name;
+    await expect.poll(holder).toBe(to!.name);
+    await page.getByLabel('As known on').fill(new Date(Date.now() - 5 * 86_400_000).toISOString().slice(0, 10));
+    await page.getByText(/^As it stood and was known on/).waitFor();
+    expect(await page.getByRole('button', { name: 'Suggest lots' }).count()).toBe(0);
+    await expectAccessible(page);
+    await page.getByRole('button', { name: 'Show today' }).click();
+    await page.getByRole('button', { name: 'Suggest lots' }).waitFor();
+    await context.close();
+  });
+
+  it('shows what stops a pick date, who entered it and who may lift it', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/pick-board`);
+    const stop = page.getByText(/Copper hydroxide \(21 days before harvest as typed\), no picking before .* Entered by Tessa Brand\./);
+    const rose = (await board(page, estateId)).lots.find(({ stops }) => stops.length > 0);
+    expect(rose?.stops[0]).toMatchObject({ kind: 'pick', setBy: 'Tessa Brand' });
+    await stop.first().waitFor();
+    await page.getByText(/Only Hester Vane or Tessa Brand may lift the entry/).first().waitFor();
+    await expectAccessible(page);
+    await context.close();
+  });
+
   it('gives the lot its tank and day, confirms it and sends its notice', async () => {
     const { page, context, estateId } = await app.signIn('winemaker');
     await page.goto(`${app.url}/e/${estateId}/lots`);

@@ -4,6 +4,7 @@
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
  * npm run bench -- --import [--runs N] [--data FOLDER]                 seconds and memory of reading pictures, beside GDAL
+ * npm run bench -- --requests http://localhost:3000 [--count SECONDS]  how fast a running server answers while it zones
  * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
  * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}'] …   speed, as JSON
  */
@@ -12,6 +13,7 @@ import { parseArgs } from 'node:util';
 import { benchImport } from './benchImport.ts';
 import { benchPipeline } from './benchPipeline.ts';
 import { benchPlan } from './benchPlan.ts';
+import { benchRequests } from './benchRequests.ts';
 import { benchSync } from './benchSync.ts';
 import { benchVerdict } from './benchVerdict.ts';
 import { benchZones } from './benchZones.ts';
@@ -27,6 +29,7 @@ const { values } = parseArgs({
     coverage: { type: 'boolean', default: false },
     import: { type: 'boolean', default: false },
     plan: { type: 'boolean', default: false },
+    requests: { type: 'string' },
     count: { type: 'string' },
     seed: { type: 'string', default: '1000' },
     runs: { type: 'string', default: '3' },
@@ -39,7 +42,8 @@ const { values } = parseArgs({
 const print = (value: unknown) => process.stdout.write(`${JSON.stringify(value, (_, each: unknown) => (typeof each === 'number' && !Number.isInteger(each) ? Number(each.toPrecision(4)) : each))}\n`);
 const seed = Number(values.seed);
 
-if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed)) print(row);
+if (values.requests !== undefined) for await (const row of benchRequests(values.requests, Number(values.count ?? 20))) print(row);
+else if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed)) print(row);
 else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);

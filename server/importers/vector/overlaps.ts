@@ -1,4 +1,6 @@
 import type { Feature, MultiPolygon, Polygon, Position } from 'geojson';
+import { eachCellShare } from '../../../shared/analysis/cellShares.ts';
+import { signedArea } from '../../../shared/geo/rings.ts';
 import type { ImportWarning } from '../understood.ts';
 import { isInside } from './placeHoles.ts';
 import { areaHa } from './positions.ts';
@@ -17,9 +19,12 @@ interface Area {
   geometry: Polygon | MultiPolygon;
 }
 
+/** Cells along each side of the ground that two shapes may share, to see that they do not. */
+const LOOK_CELLS = 256;
+
 /**
  * Polygons of one layer that cover the same ground by more than a hundredth of the smaller one. Neighbours that share a
- * border exactly are told apart without computing an intersection, so a clean soil map costs almost nothing.
+ * border, exactly or nearly, are told apart without computing an intersection, so a clean soil map costs almost nothing.
  */
 export async function overlapWarnings(layer: string, features: readonly Feature[]): Promise<ImportWarning[]> {
   const areas = features.flatMap((feature, index): Area[] => areaOf(feature, index)).sort((a, b) => a.box[0] - b.box[0]);
@@ -31,6 +36,7 @@ export async function overlapWarnings(layer: string, features: readonly Feature[
     for (const other of active) {
       if (other.box[1] >= area.box[3] || other.box[3] <= area.box[1] || !mayOverlap(area, other)) continue;
       if (++compared > MOST_PAIRS) return warnings;
+      if (sharedAtMost(area, other) < LEAST_SHARE) continue;
       const shared = await sharedHa(area.geometry, other.geometry);
       if (shared < LEAST_SHARE * Math.min(areaHa(area.geometry), areaHa(other.geometry))) continue;
       const [first, second] = [Math.min(area.index, other.index) + 1, Math.max(area.index, other.index) + 1];
@@ -67,6 +73,28 @@ function mayOverlap(a: Area, b: Area): boolean {
 function isWithin(inner: Area, outer: Area): boolean {
   const corners = inner.polygons.flatMap(([ring]) => ring!.slice(0, 20));
   return outer.polygons.some(([shell, ...holes]) => corners.some((corner) => isInside(corner, shell!) && !holes.some((hole) => isInside(corner, hole))));
+}
+
+/**
+ * No more than this share of the smaller one is covered by both: of each cell of a fine raster over the ground where they may
+ * meet, the smaller of the two covers (cellShares). A border that both have adds half a cell along it.
+ */
+function sharedAtMost(a: Area, b: Area): number {
+  const [west, south] = [Math.max(a.box[0], b.box[0]), Math.max(a.box[1], b.box[1])];
+  const [width, height] = [(Math.min(a.box[2], b.box[2]) - west) / LOOK_CELLS, (Math.min(a.box[3], b.box[3]) - south) / LOOK_CELLS];
+  const raster = { cols: LOOK_CELLS, rows: LOOK_CELLS };
+  const cells = (ring: readonly Position[]) => Float64Array.from(ring.flatMap(([x, y]) => [(x! - west) / width, (y! - south) / height]));
+  const inCells = ({ polygons }: Area) => polygons.map((rings) => rings.map(cells));
+  const cover = new Float32Array(LOOK_CELLS * LOOK_CELLS);
+  eachCellShare(inCells(a), raster, (cell, share) => (cover[cell]! += share));
+  let shared = 0;
+  eachCellShare(inCells(b), raster, (cell, share) => (shared += Math.min(share, cover[cell]!)));
+  return (shared * width * height) / Math.min(planeArea(a), planeArea(b));
+}
+
+/** In squared degrees. */
+function planeArea({ polygons }: Area): number {
+  return polygons.reduce((sum, rings) => sum + rings.reduce((area, ring, at) => area + (at === 0 ? 1 : -1) * Math.abs(signedArea(ring as [number, number][])), 0), 0);
 }
 
 async function sharedHa(a: Polygon | MultiPolygon, b: Polygon | MultiPolygon): Promise<number> {

@@ -47,11 +47,14 @@ function medianOf(values: readonly number[]): number {
   return medianSorted([...values].sort((a, b) => a - b));
 }
 
+const MOST_FLAGGED = 0.25;
+
 /**
  * Flags readings against the rest of their own group, with one scale for all groups: groups of three or four are
  * too small for a scale of their own. The reading nearest to its group's median is nearly 0 from it by construction
  * and would shrink the scale, so it is left out of it; an even group is stretched by √(n/(n−1)) for the same reason.
  * With `relative`, distances are taken as shares of the group's median. The correction is ours, checked by simulation.
+ * Where more than a quarter of a group lies far off, it is a second population and no outlier (judgement): none is flagged.
  */
 export function flagWithinGroups(groups: readonly (readonly number[])[], options: OutlierOptions & { readonly relative?: boolean } = {}): boolean[][] {
   const { limit = OUTLIER_LIMIT, resolution = 0, relative = false } = options;
@@ -68,7 +71,11 @@ export function flagWithinGroups(groups: readonly (readonly number[])[], options
   });
   const floor = relative ? 0 : resolution / Math.sqrt(12);
   const scale = distances.length === 0 ? 0 : Math.max(medianOf(distances) / MAD_FACTOR, floor);
-  return scored.map((group) => group.map((distance) => scale > 0 && Math.abs(distance) / scale > limit));
+  return scored.map((group) => {
+    const flags = group.map((distance) => scale > 0 && Math.abs(distance) / scale > limit);
+    const isPopulation = flags.filter(Boolean).length > Math.max(1, MOST_FLAGGED * group.length);
+    return isPopulation ? flags.map(() => false) : flags;
+  });
 }
 
 export interface GrubbsTest {

@@ -161,6 +161,14 @@ describe('outliers', () => {
     expect(flagWithinGroups(groups)).toEqual([[false, false, false], [false, true, false, false], [false, false, false], [false]]);
   });
 
+  it('takes a second population for what it is: half a visit is no outlier, one reading in ten is', () => {
+    const earlier = [39, 40, 41, 40, 42, 38, 40, 41];
+    const two = [12, 40, 13, 41, 14, 42, 15, 40];
+    expect(flagWithinGroups([earlier, two], { relative: true }).flat().some(Boolean)).toBe(false);
+    const one = [40, 41, 39, 40, 42, 12, 40, 41, 39, 40];
+    expect(flagWithinGroups([earlier, one], { relative: true })[1]!.flatMap((flagged, i) => (flagged ? [i] : []))).toEqual([5]);
+  });
+
   it('flags hardly any healthy reading, whatever the group size', () => {
     const random = seededRandom(11);
     for (const size of [2, 3, 4, 5, 8, 15]) {

@@ -2,7 +2,12 @@ import { randomUUID } from 'node:crypto';
 import { readFileSync } from 'node:fs';
 import type { Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import { cellAt } from '../../shared/analysis/grid.ts';
+import type { CellsGrid } from '../../shared/contracts/layers.ts';
 import type { PlanView } from '../../shared/contracts/plans.ts';
+import { toUtm } from '../../shared/geo/utm.ts';
+import { readPdf, type PdfPage } from '../core/pdfText.ts';
 import { startApplication, type Application } from './support/application.ts';
 
 let app: Application;
@@ -45,10 +50,31 @@ async function send(): Promise<void> {
   await page.getByRole('button', { name: /^Send/ }).click();
   await page.getByText(/has a mail with the round/).waitFor();
 }
-async function download(button: string): Promise<string> {
-  const [file] = await Promise.all([page.waitForEvent('download'), page.getByRole('button', { name: button, exact: true }).click()]);
-  return readFileSync((await file.path())!).toString('latin1');
+const api = (path: string) => `${app.url}/api/estates/${estateId}${path}`;
+async function asked<Answer>(path: string, sent?: object): Promise<Answer> {
+  const { csrfToken } = (await (await page.request.get(`${app.url}/api/session`)).json()) as { csrfToken: string };
+  const answer = await (sent ? page.request.post(api(path), { headers: { 'x-csrf-token': csrfToken }, data: sent }) : page.request.get(api(path)));
+  expect(answer.ok(), await answer.text()).toBe(true);
+  return answer.json() as Promise<Answer>;
 }
+/** Counts of the first zone as if it were two: many clusters where a layer of the block is above its middle there, few below. */
+async function countTwoPopulations(zoningId: string): Promise<void> {
+  const plan = await asked<PlanView>(`/zonings/${zoningId}/plans`, { name: 'Counted', measures: [{ code: 'clusterCount' }], minimum: 40 });
+  const { items: layers } = await asked<{ items: { id: string; type: string }[] }>(`/blocks/${plan.blockId}/layers`);
+  const cells = await page.request.get(api(`/layers/${layers.find(({ type }) => type === 'conductivity')!.id}/cells?block=${plan.blockId}`));
+  const values = decodeFloatCells(await cells.body());
+  const grid = JSON.parse(cells.headers()['x-grid']!) as CellsGrid;
+  const valueAt = (position: readonly [number, number]) => values[cellAt(grid, toUtm(position, grid.epsg))]!;
+  const targets = plan.targets.filter(({ zone }) => zone === 1);
+  const middle = targets.map(({ position }) => valueAt(position)).sort((a, b) => a - b)[Math.floor(targets.length / 2)]!;
+  const readings = targets.map(({ rowId, ordinal, position }, i) => ({ id: randomUUID(), blockId: plan.blockId, rowId, ordinal, measureCode: 'clusterCount', value: (valueAt(position) >= middle ? 40 : 12) + (i % 5), unit: 'clusters', takenAt: new Date().toISOString() }));
+  await asked('/readings', { readings });
+}
+async function download(button: string): Promise<PdfPage[]> {
+  const [file] = await Promise.all([page.waitForEvent('download'), page.getByRole('button', { name: button, exact: true }).click()]);
+  return readPdf(readFileSync((await file.path())!));
+}
+const wordsOf = (pages: readonly PdfPage[]) => pages.flatMap(({ texts }) => texts).join(' ');
 
 describe('from a pilot to paper', () => {
   it('nobody knows a spread: a pilot is advised, drawn, locked and sent', async () => {
@@ -85,6 +111,20 @@ describe('from a pilot to paper', () => {
     await page.keyboard.press('Tab');
     await page.getByText(/needs? more than 60 vines/).waitFor();
     await page.getByText(/Margins \d+\s%\swider/).waitFor();
+    const apart = await vinesAsked();
+    const pooling = page.getByRole('listitem').filter({ hasText: 'taken as one' });
+    const promised = Number(/taken as one: ([\d  ]+) vines/u.exec(await pooling.innerText())![1]!.replace(/\D/gu, ''));
+    await pooling.getByRole('button', { name: 'Take this' }).click();
+    await page.getByText('sampled as one').first().waitFor();
+    expect(await vinesAsked()).toBe(promised);
+    expect(promised).toBeLessThan(apart);
+    await page.getByText('sampled as one').first().click();
+    await page.getByRole('button', { name: 'Sample apart again' }).click();
+    expect(await vinesAsked()).toBe(apart);
+    // The fruit of the demo is alike inside its zones; once one of them is counted as two, dividing it is recommended.
+    await countTwoPopulations(/zonings\/([0-9a-f-]{36})/.exec(page.url())![1]!);
+    await newPlan();
+    await page.getByText('Recommended.').first().waitFor();
     const divide = page.getByRole('button', { name: 'Divide in a draft' }).first();
     await divide.click();
     await page.getByRole('dialog').getByRole('button', { name: 'Divide in a draft' }).click();
@@ -100,8 +140,20 @@ describe('from a pilot to paper', () => {
     await page.getByRole('button', { name: 'Other measures' }).click();
     await page.getByRole('checkbox', { name: '°Brix in the plan' }).check();
     await drawAndLock();
-    await page.getByText(/^Walk 1: \d+ vines/).waitFor();
-    await page.locator('.estate-map[data-ready="true"]').waitFor();
+    const walk = page.getByText(/^Walk 1: \d+ vines/);
+    const atGate = await walk.innerText();
+    await page.getByText('a row end', { exact: true }).click();
+    await page.locator('.walk-from select').selectOption({ label: '30' });
+    await page.getByText(/^far end \(/).click();
+    await page.waitForFunction((before) => !document.body.innerText.includes(before), atGate);
+    const atRow = await walk.innerText();
+    const map = page.locator('.estate-map[data-ready="true"]');
+    await map.waitFor();
+    await page.getByText('a place on the map', { exact: true }).click();
+    await map.scrollIntoViewIfNeeded();
+    await map.click({ position: { x: 60, y: 40 } });
+    await page.waitForFunction((before) => !document.body.innerText.includes(before), atRow);
+    await page.getByText('Tap the map again to move the start.').waitFor();
     await page.getByRole('textbox', { name: 'People' }).fill('2');
     await page.keyboard.press('Tab');
     await page.getByText(/^Walk 2: \d+ vines/).waitFor();
@@ -109,10 +161,16 @@ describe('from a pilot to paper', () => {
     await send();
     await page.getByRole('table').filter({ hasText: 'Nuno Alvor' }).getByText('Nuno Alvor').first().click();
     const sheet = await download('Sheet, A4');
-    expect(sheet.startsWith('%PDF-')).toBe(true);
+    // A4 upright is 595.28 by 841.89 points.
+    expect(sheet[0]).toMatchObject({ width: 595.28, height: 841.89 });
+    for (const words of ['Long Furrow, Nuno Alvor', 'No restriction recorded', 'Emergency: 112', 'Not this vine', 'BLUE', 'YELLOW', 'Open this round', 'Bag: °Brix']) expect(wordsOf(sheet)).toContain(words);
     const labels = await download('Single labels');
     const brix = (await (await page.request.get(`${app.url}/api/estates/${estateId}/plans/${/plans\/([0-9a-f-]{36})/.exec(page.url())![1]}`)).json()) as PlanView;
-    expect(labels.match(/\/Type \/Page\b/gu)).toHaveLength(brix.targets.filter(({ measures }) => measures.includes('brix')).length);
+    expect(labels).toHaveLength(brix.targets.filter(({ measures }) => measures.includes('brix')).length);
+    for (const { texts } of labels) expect(texts[0]).toMatch(/^[A-Z]{3} [A-Z]{3}$/u);
+    // As many boxes for clusters as vines are counted, and one more where fruit goes into a bag.
+    const boxes = sheet.flatMap((one) => one.boxes.filter(({ height }) => height === 25));
+    expect(boxes).toHaveLength(brix.targets.reduce((sum, { measures }) => sum + measures.length, 0));
     await page.getByText('Go on as planned').first().waitFor();
   });
 });

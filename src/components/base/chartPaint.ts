@@ -119,7 +119,8 @@ export function marksPlugin(marks: () => ChartMarks): Plugin<'line'> {
     },
     afterDatasetsDraw: (chart) => {
       const { series, rainAt, drops, ink } = marks();
-      for (const drop of drops) drawDropWords(chart, drop, ink);
+      const levels = wordLevels(drops.map((drop) => placeOf(chart, drop)[0]));
+      drops.forEach((drop, at) => drawDropWords(chart, drop, { ink, level: levels[at]! }));
       for (const one of series) drawErrorBars(chart, one, ink);
       for (const one of series) drawEndWord(chart, one, ink);
       for (const at of rainAt) drawRain(chart, at, ink);
@@ -173,15 +174,31 @@ function drawDropLine(chart: Chart<'line'>, drop: ChartDrop, ink: ChartInk): voi
   stroke(chart.ctx, { colour: drop.chosen ? ink.slate : ink.muted, width: drop.chosen ? 2.5 : 1 }, (pen) => (pen.moveTo(x, y), pen.lineTo(x, bottom)));
 }
 
+/** About as wide as "95 %" with a gap after it. */
+const wordWidth = 42;
+const wordHeight = 14;
+
+/** Words that would run into each other take turns on lines above each other, from left to right. */
+export function wordLevels(places: readonly number[]): number[] {
+  const levels = places.map(() => 0);
+  const ends: number[] = [];
+  for (const at of places.map((_, index) => index).sort((a, b) => places[a]! - places[b]!)) {
+    const free = ends.findIndex((end) => end <= places[at]!);
+    levels[at] = free === -1 ? ends.length : free;
+    ends[levels[at]!] = places[at]! + wordWidth;
+  }
+  return levels;
+}
+
 /** Over the curves, on a halo of the ground, so that no dash runs through a figure. */
-function drawDropWords(chart: Chart<'line'>, drop: ChartDrop, ink: ChartInk): void {
+function drawDropWords(chart: Chart<'line'>, drop: ChartDrop, { ink, level }: { ink: ChartInk; level: number }): void {
   const [x, y] = placeOf(chart, drop);
   const { bottom } = chart.chartArea;
   chart.ctx.fillStyle = drop.chosen ? ink.slate : ink.ground;
   chart.ctx.fillRect(x - 4, y - 4, 8, 8);
   stroke(chart.ctx, { colour: ink.ink, width: 1.5 }, (pen) => pen.rect(x - 4, y - 4, 8, 8));
-  write(chart.ctx, drop.text, { x: x + 5, y: bottom - 6, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
-  if (drop.word) write(chart.ctx, drop.word, { x: x + 3, y: y - 10, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
+  write(chart.ctx, drop.text, { x: x + 5, y: bottom - 6 - level * wordHeight, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
+  if (drop.word) write(chart.ctx, drop.word, { x: x + 3, y: y - 10 - level * wordHeight, colour: drop.chosen ? ink.ink : ink.muted, bold: drop.chosen, halo: ink.ground });
 }
 
 function drawErrorBars(chart: Chart<'line'>, series: ChartSeries, ink: ChartInk): void {

@@ -1,5 +1,6 @@
-import type { MessagePort } from 'node:worker_threads';
+import { workerData, type MessagePort } from 'node:worker_threads';
 import { toCarried, type CarriedError } from './carriedError.ts';
+import { yieldToRequests } from './yieldToRequests.ts';
 
 type Progress = (stage: string, progress: number) => void;
 type Computation = (input: never, progress: Progress) => unknown;
@@ -21,6 +22,8 @@ const computations = {
 export type ComputeName = keyof typeof computations;
 
 export type ComputeAnswer = { value: unknown } | { refused: CarriedError };
+
+if ((workerData as { lane?: string } | null)?.lane === 'heavy') yieldToRequests();
 
 /** Entry of a compute thread. What is wrong with the input comes back as an answer; a fault of ours is thrown. */
 export default async function compute(task: { name: ComputeName; input: never; port: MessagePort }): Promise<ComputeAnswer> {

@@ -3,17 +3,17 @@ import { Piscina } from 'piscina';
 import { fromCarried } from './carriedError.ts';
 import type { ComputeAnswer, ComputeName } from './compute.ts';
 
-/** quick: what a person waits for at the screen. heavy: jobs that may take minutes and must not hold up the first. */
+/** quick: what a person waits for at the screen. heavy: jobs that may take minutes and must not hold up the first, nor requests. */
 export type Lane = 'quick' | 'heavy';
 
 let pools: Record<Lane, Piscina> | null = null;
 
 /** Opens the threads that do heavy work, so that requests stay fast; one more thread is kept for quick work. */
 export function openComputePool(threads: number): void {
-  pools ??= { quick: makePool(1), heavy: makePool(threads) };
+  pools ??= { quick: makePool('quick', 1), heavy: makePool('heavy', threads) };
 }
 
-function makePool(threads: number): Piscina {
+function makePool(lane: Lane, threads: number): Piscina {
   const fromSource = import.meta.url.endsWith('.ts');
   return new Piscina({
     filename: new URL(fromSource ? './sourceThread.mjs' : './compute.js', import.meta.url).href,
@@ -21,7 +21,7 @@ function makePool(threads: number): Piscina {
     minThreads: 0,
     idleTimeout: 60_000,
     // The GeoTIFF reader refuses to load in a thread without worker data.
-    workerData: {},
+    workerData: { lane },
   });
 }
 

@@ -1,3 +1,4 @@
+import { readFileSync, readdirSync, readlinkSync } from 'node:fs';
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
@@ -502,6 +503,13 @@ describe('publishing', () => {
     const cells = zones.reduce((sum, zone) => sum + zone.doubtfulShare! * zone.areaM2, 0) / zones.reduce((sum, zone) => sum + zone.areaM2, 0);
     expect(Math.abs(doubt.doubtful / doubt.vines - cells)).toBeLessThan(0.05);
     expect((await manager.get(`${base()}/zonings/${zoningId}/doubt?zones=1`)).body).toMatchObject({ doubtful: 0, geometry: null });
+  });
+
+  it.runIf(process.platform === 'linux')('is computed in a thread that lets requests go first', async () => {
+    await zoned();
+    const niceness = (thread: string) => Number(readFileSync(`/proc/self/task/${thread}/stat`, 'utf8').split(') ')[1]!.split(' ')[16]);
+    const own = niceness(readlinkSync('/proc/thread-self').split('/').at(-1)!);
+    expect(readdirSync('/proc/self/task').map(niceness).filter((nice) => nice === own + 10)).toHaveLength(1);
   });
 
   it('is set beside the layers and zones of other seasons', async () => {

@@ -1,0 +1,15 @@
+import { readlinkSync } from 'node:fs';
+import { setPriority } from 'node:os';
+import { basename } from 'node:path';
+
+/** Niceness of a thread that computes for minutes; 0 is that of the thread that answers requests. */
+const NICENESS = 10;
+
+/** Lets requests go first where cores are few: this thread alone is given less of them. Linux has such threads; elsewhere nothing happens. */
+export function yieldToRequests(): void {
+  try {
+    setPriority(Number(basename(readlinkSync('/proc/thread-self'))), NICENESS);
+  } catch {
+    // A system without threads of their own priority shares its cores evenly.
+  }
+}

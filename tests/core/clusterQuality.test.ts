@@ -45,6 +45,48 @@ describe('quality of a partition', () => {
     expect(daviesBouldin(iris, species, partition)).toBeCloseTo(0.751371, 6);
   });
 
+  it('gives each of three zones of iris its part, as R does', () => {
+    // R 4.2.2: kmeans()$withinss, cluster::silhouette means by zone, Rand index, table(species, zone).
+    const { labels } = fitKMeans(iris, { k: 3, random: seededRandom(2) });
+    const { sizes, withinByZone } = describePartition(iris, labels, 3);
+    const silhouette = silhouettesByPoint(iris, [labels])[0]!;
+    const zones = [0, 1, 2].sort((a, b) => sizes[a]! - sizes[b]!);
+    const meanSilhouette = (zone: number) => silhouette.reduce((sum, value, i) => sum + (labels[i] === zone ? value : 0), 0) / sizes[zone]!;
+    expect(zones.map((zone) => sizes[zone])).toEqual([38, 50, 62]);
+    [23.879474, 15.151, 39.820968].forEach((within, at) => expect(withinByZone[zones[at]!]).toBeCloseTo(within, 5));
+    [0.451105, 0.79814, 0.41732].forEach((mean, at) => expect(meanSilhouette(zones[at]!)).toBeCloseTo(mean, 5));
+    expect(randIndex(species, labels)).toBeCloseTo(0.879732, 6);
+    const together = (kind: number) => zones.map((zone) => species.filter((own, i) => own === kind && labels[i] === zone).length);
+    expect([...new Set(species)].map(together)).toEqual([[0, 50, 0], [2, 0, 48], [36, 0, 14]]);
+  });
+
+  it('has an inertia of standardised iris that depends on the divisor of the deviation, and zones that do not', () => {
+    // R 4.2.2 scale() divides by n − 1, scikit-learn's StandardScaler by n.
+    const scaled = (divisor: number) => {
+      const columns = [0, 1, 2, 3].map((f) => {
+        const values = table.map((row) => row[f]!);
+        const mean = values.reduce((sum, value) => sum + value, 0) / values.length;
+        const sd = Math.sqrt(values.reduce((sum, value) => sum + (value - mean) ** 2, 0) / divisor);
+        return values.map((value) => (value - mean) / sd);
+      });
+      return pointTable(table.map((_, i) => columns.map((column) => column[i]!)));
+    };
+    const fits = [150, 149].map((divisor) => {
+      const points = scaled(divisor);
+      const { labels } = fitKMeans(points, { k: 3, random: seededRandom(2) });
+      return { labels, within: describePartition(points, labels, 3).within };
+    });
+    expect(fits[0]!.within).toBeCloseTo(139.820496, 5);
+    expect(fits[1]!.within).toBeCloseTo(138.88836, 5);
+    expect(adjustedRandIndex(fits[0]!.labels, fits[1]!.labels)).toBe(1);
+  });
+
+  it('separates six figures in two lots 3750-fold', () => {
+    // By hand: between 37.50 over one degree of freedom, within 0.04 over four.
+    const six = pointTable([[0], [0.1], [0.2], [5], [5.1], [5.2]]);
+    expect(calinskiHarabasz(describePartition(six, [0, 0, 0, 1, 1, 1], 2))).toBeCloseTo(3750, 6);
+  });
+
   it('gives the nine points in three corners the figures of scikit-learn', () => {
     const partition = describePartition(nine, corners, 3);
     expect(partition.within).toBeCloseTo(4, 9);
@@ -52,6 +94,7 @@ describe('quality of a partition', () => {
     expect(calinskiHarabasz(partition)).toBeCloseTo(150.666667, 6);
     expect(daviesBouldin(nine, corners, partition)).toBeCloseTo(0.183895896, 8);
     const expected = [0.869917, 0.819575, 0.843459, 0.851145, 0.819575, 0.843459, 0.864458, 0.810935, 0.819575];
+    expect(silhouettes(nine, [corners])[0]).toBeCloseTo(0.838010857, 8);
     expected.forEach((value, i) => expect(silhouettesByPoint(nine, [corners])[0]![i]).toBeCloseTo(value, 6));
   });
 

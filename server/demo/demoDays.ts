@@ -4,12 +4,18 @@ export interface DemoDays {
   day: (offset: number) => string;
   /** An instant of that day, at an hour of UTC. */
   at: (offset: number, hour: number) => Date;
+  /** When today's work began: at four, or two and a half hours ago where that is earlier. Nothing of the demo lies ahead of its clock. */
+  dawn: Date;
 }
 
-export function demoDays(today: string): DemoDays {
+const beganBeforeMs = 150 * 60_000;
+
+/** `today` is the day at the estate, `now` the instant. */
+export function demoDays(today: string, now: Date): DemoDays {
   const start = Date.parse(`${today}T00:00:00Z`);
   const at = (offset: number, hour: number) => new Date(start + offset * 86_400_000 + hour * 3_600_000);
-  return { at, day: (offset) => at(offset, 0).toISOString().slice(0, 10) };
+  const dawn = new Date(Math.min(at(0, 4).getTime(), now.getTime() - beganBeforeMs));
+  return { at, day: (offset) => at(offset, 0).toISOString().slice(0, 10), dawn };
 }
 
 const yearDays = 365;

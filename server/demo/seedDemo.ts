@@ -1,3 +1,4 @@
+import { dayIn } from '../../shared/season/dayIn.ts';
 import { Estate } from '../models/Estate.ts';
 import { demoDays } from './demoDays.ts';
 import { placeOn } from './demoPlace.ts';
@@ -26,9 +27,8 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
   const step = options.onStep ?? (() => undefined);
   if (options.reset) await eraseDemo();
   else if (await Estate.query().findOne({ isDemo: true })) return false;
-  const today = options.now.toISOString().slice(0, 10);
-  const days = demoDays(today);
-  const place = placeOn(today);
+  const place = placeOn(options.now.toISOString().slice(0, 10));
+  const days = demoDays(dayIn(place.timeZone, options.now), options.now);
   const ground = makeGround(groundSeed, place);
   try {
     step('estate');

@@ -19,5 +19,5 @@ export async function seedField(made: DemoEstate, options: { days: DemoDays; now
     newReading.parse({ id: uuidFrom(random), blockId, roundId, targetId, rowId, ordinal, measureCode, unit, value: value + 3 + at, takenAt: new Date(takenAt.getTime() + 40 * 60_000).toISOString() }));
   await recordBatch(manager, { readings, findings: [] }, options.now);
   await addCrewPerson(manager, { name: 'Inês Vale', language: 'pt', pin: '4711' });
-  await checkIn(crew, { deviceId: uuidFrom(random), waiting: 0, isReady: true, deviceTime: options.days.at(0, 5).toISOString() }, options.days.at(0, 5));
+  await checkIn(crew, { deviceId: uuidFrom(random), waiting: 0, isReady: true, deviceTime: options.days.dawn.toISOString() }, options.days.dawn);
 }

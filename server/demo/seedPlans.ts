@@ -25,7 +25,7 @@ export async function seedPlans(made: DemoEstate, laid: readonly LaidBlock[], op
   await changeRound(crew, furrow.roundId, { state: 'open' }, options.now);
   await walkHalf(crew, furrow, options);
   await sendRound(manager, { blockId: blockOf('millrace').id, name: 'Clusters, Millrace', measure: 'clusterCount', margin: 0.15, onDate: options.days.day(2), gate: 'Mill bridge', notes: '', crew: crew.personId });
-  const spraying = { blockId: blockOf('stile').id, startsAt: options.days.at(0, 4).toISOString(), endsAt: options.days.at(2, 12).toISOString(), product: 'Wettable sulphur', labelInterval: '48 h', noPickBefore: options.days.day(7), note: 'Back half of the block sprayed before sunrise.' };
+  const spraying = { blockId: blockOf('stile').id, startsAt: options.days.dawn.toISOString(), endsAt: options.days.at(2, 12).toISOString(), product: 'Wettable sulphur', labelInterval: '48 h', noPickBefore: options.days.day(7), note: 'Back half of the block sprayed before sunrise.' };
   await setRestriction(manager, newRestriction.parse(spraying));
 }
 
@@ -69,7 +69,7 @@ async function walkHalf(crew: Access, round: SentRound, { days, now }: { days: D
       measureCode: 'clusterCount',
       value: Math.max(3, Math.round(13 + 5 * target.zone + 8 * (random() - 0.5))),
       unit: 'clusters',
-      takenAt: new Date(days.at(0, 4).getTime() + index * 90_000).toISOString(),
+      takenAt: new Date(days.dawn.getTime() + index * 90_000).toISOString(),
     }),
   );
   await recordBatch(crew, { readings, findings: [] }, now);

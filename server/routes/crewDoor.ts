@@ -16,7 +16,7 @@ export function crewDoorRoutes(options: { csrfToken: (request: Request) => strin
   router.post('/crew/session', tries, async (request, response) => {
     const { personId } = await signInWithPin(crewSignIn.parse(request.body), new Date());
     await startSession(request, { id: personId }, new Date());
-    response.json(await describeSession(personId, { csrfToken: options.csrfToken(request), demo: options.demo, today: new Date().toISOString().slice(0, 10) }));
+    response.json(await describeSession(personId, { csrfToken: options.csrfToken(request), demo: options.demo, now: new Date() }));
   });
   return router;
 }

@@ -8,7 +8,7 @@ import { describeSession } from '../services/sessions.ts';
 export function estateListRoutes(): Router {
   const router = Router();
   router.get('/estates', async (request, response) => {
-    const { estates } = await describeSession(signedIn(request), { csrfToken: '', demo: false, today: today() });
+    const { estates } = await describeSession(signedIn(request), { csrfToken: '', demo: false, now: new Date() });
     response.json({ items: estates, total: estates.length });
   });
   router.post('/estates', async (request, response) => {
@@ -23,7 +23,7 @@ export function estateRoutes(): Router {
   const router = Router({ mergeParams: true });
   router.get('/', allow('estate.see', 'read'), async (request, response) => {
     const access = accessOf(request);
-    const { estates } = await describeSession(access.personId, { csrfToken: '', demo: false, today: today() });
+    const { estates } = await describeSession(access.personId, { csrfToken: '', demo: false, now: new Date() });
     response.json(estates.find((estate) => estate.id === access.estateId));
   });
   router.get('/facts', allow('estate.settings', 'read'), async (request, response) => {

@@ -1,4 +1,4 @@
-import { Router } from 'express';
+import { Router, type Request } from 'express';
 import { z } from 'zod';
 import { newNotice } from '../../shared/contracts/notices.ts';
 import { factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
@@ -7,13 +7,15 @@ import { accessOf, allow, idParam } from '../access/guard.ts';
 import { enterCellarResult, listCellarResults, listFactors, switchFactor } from '../services/lots/cellar.ts';
 import { listNotices, noticePeople, noticeState, printNotice, readNotice, sendNotice } from '../services/lots/notices.ts';
 import { seasonLetter } from '../services/lots/letter.ts';
+import { todayOf } from '../services/estates.ts';
 import { reopenLot } from '../services/lots/reopenLot.ts';
 import { seasonReview } from '../services/lots/review.ts';
 import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
 import { versionMatched } from './etag.ts';
 
 const letterQuery = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
-const today = () => new Date().toISOString().slice(0, 10);
+
+const today = (request: Request) => todayOf(accessOf(request), new Date());
 
 /** Whether a notice on paper still holds; open to whoever has the paper, by its unguessable code. */
 export function noticeStateRoutes(): Router {
@@ -56,14 +58,14 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   });
 
   router.get('/tickets', allow('lots.see', 'read'), async (request, response) => {
-    const items = await listTickets(accessOf(request), today());
+    const items = await listTickets(accessOf(request), await today(request));
     response.json({ items, total: items.length });
   });
   router.post('/tickets', allow('tickets.enter'), async (request, response) => {
     response.status(201).json(await enterTicket(accessOf(request), newTicket.parse(request.body), new Date()));
   });
   router.post('/tickets/import', allow('tickets.enter'), async (request, response) => {
-    response.json(await importTickets(accessOf(request), ticketFile.parse(request.body), { today: today(), now: new Date() }));
+    response.json(await importTickets(accessOf(request), ticketFile.parse(request.body), { today: await today(request), now: new Date() }));
   });
   router.get('/cellar-results', allow('lots.see', 'read'), async (request, response) => {
     const items = await listCellarResults(accessOf(request));
@@ -83,11 +85,11 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
 
   router.get('/blocks/:blockId/season-letter', allow('review.see'), async (request, response) => {
     const { size } = letterQuery.parse(request.query);
-    const { name, body } = await seasonLetter(accessOf(request), idParam(request, 'blockId'), { size, today: today(), now: new Date() });
+    const { name, body } = await seasonLetter(accessOf(request), idParam(request, 'blockId'), { size, today: await today(request), now: new Date() });
     response.type('application/pdf').attachment(name).send(body);
   });
   router.get('/review', allow('review.see', 'read'), async (request, response) => {
-    response.json(await seasonReview(accessOf(request), { today: today() }));
+    response.json(await seasonReview(accessOf(request), { today: await today(request) }));
   });
   return router;
 }

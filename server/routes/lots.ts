@@ -1,8 +1,9 @@
-import { Router } from 'express';
+import { Router, type Request } from 'express';
 import { z } from 'zod';
 import { id, isoDate } from '../../shared/contracts/common.ts';
 import { dayCapacity, lotChange, lotParts, newLot, newScenario, newTank, tankChange, zoneMove } from '../../shared/contracts/lots.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import { todayOf } from '../services/estates.ts';
 import { listTanks, lotsBoard } from '../services/lots/board.ts';
 import { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { listCapacities, setCapacity } from '../services/lots/capacities.ts';
@@ -17,7 +18,8 @@ import { versionMatched } from './etag.ts';
 const boardQuery = z.object({ scenario: id.optional(), known: isoDate.optional() });
 const resultsQuery = z.object({ season: id.optional() });
 const ripeningQuery = z.object({ known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
-const today = () => new Date().toISOString().slice(0, 10);
+
+const today = (request: Request) => todayOf(accessOf(request), new Date());
 
 /** Results by zone, pick lots, what-ifs and tanks. Writes on a lot name its version in If-Match. */
 export function lotRoutes(): Router {
@@ -29,15 +31,15 @@ export function lotRoutes(): Router {
   });
   router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
     const { known, unchecked } = ripeningQuery.parse(request.query);
-    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: today(), knownOn: known ?? null, unchecked }));
+    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: await today(request), knownOn: known ?? null, unchecked }));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {
     const { scenario, known } = boardQuery.parse(request.query);
-    response.json(await lotsBoard(accessOf(request), { scenarioId: scenario ?? null, today: today(), knownOn: known ?? null }));
+    response.json(await lotsBoard(accessOf(request), { scenarioId: scenario ?? null, today: await today(request), knownOn: known ?? null }));
   });
   router.post('/lots', allow('lots.build', 'propose'), async (request, response) => {
-    response.status(201).json(await createLot(accessOf(request), newLot.parse(request.body), today()));
+    response.status(201).json(await createLot(accessOf(request), newLot.parse(request.body), await today(request)));
   });
   router.patch('/lots/:lotId', allow('lots.build', 'propose'), async (request, response) => {
     await changeLot(accessOf(request), idParam(request, 'lotId'), lotChange.parse(request.body), versionMatched(request));
@@ -70,7 +72,7 @@ export function lotRoutes(): Router {
     response.status(204).end();
   });
   router.post('/lot-suggestions', allow('lots.build', 'propose'), async (request, response) => {
-    response.status(201).json(await suggestScenario(accessOf(request), newSuggestion.parse(request.body), { today: today() }));
+    response.status(201).json(await suggestScenario(accessOf(request), newSuggestion.parse(request.body), { today: await today(request) }));
   });
   router.get('/lots/:lotId/decisions', allow('lots.see', 'read'), async (request, response) => {
     const items = await listDecisions(accessOf(request), idParam(request, 'lotId'));

@@ -21,7 +21,7 @@ interface Options {
 export function sessionRoutes(options: Options): Router {
   const router = Router();
   const describe = (request: Request) =>
-    describeSession(request.user?.id ?? null, { csrfToken: options.csrfToken(request), demo: options.demo, today: new Date().toISOString().slice(0, 10) });
+    describeSession(request.user?.id ?? null, { csrfToken: options.csrfToken(request), demo: options.demo, now: new Date() });
   const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed sign-ins from here. Wait a quarter of an hour, then try again.' });
 
   router.get('/session', async (request, response) => {

@@ -3,13 +3,14 @@ import { z } from 'zod';
 import { isoDate } from '../../shared/contracts/common.ts';
 import { weatherDay, weatherFile } from '../../shared/contracts/weather.ts';
 import { accessOf, allow } from '../access/guard.ts';
+import { todayOf } from '../services/estates.ts';
 import { forgetWeather, importWeather, listWeather, typeWeather } from '../services/weather/weather.ts';
 
 /** Temperatures and rain by day, typed or from a station's table. */
 export function weatherRoutes(): Router {
   const router = Router({ mergeParams: true });
   router.get('/weather', allow('results.see', 'read'), async (request, response) => {
-    response.json(await listWeather(accessOf(request), { today: new Date().toISOString().slice(0, 10) }));
+    response.json(await listWeather(accessOf(request), { today: await todayOf(accessOf(request), new Date()) }));
   });
   router.put('/weather', allow('weather.enter'), async (request, response) => {
     await typeWeather(accessOf(request), weatherDay.parse(request.body), new Date());

@@ -8,6 +8,7 @@ import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '..
 import { exportZones } from '../services/zonings/exportZones.ts';
 import { liveZones } from '../services/zonings/liveZones.ts';
 import { nameZoning } from '../services/zonings/nameZoning.ts';
+import { todayOf } from '../services/estates.ts';
 import { keepPresence } from '../services/zonings/presence.ts';
 import { compareZonings, publishEffects, publishZones } from '../services/zonings/publish.ts';
 import { reportZoning } from '../services/zonings/reportZoning.ts';
@@ -26,7 +27,7 @@ export function zoningRoutes(): Router {
   const router = Router({ mergeParams: true });
 
   router.post('/blocks/:blockId/zonings', allow('zoning.run', 'propose'), async (request, response) => {
-    const made = await requestZoning(accessOf(request), idParam(request, 'blockId'), newZoning.parse(request.body), new Date().toISOString().slice(0, 10));
+    const made = await requestZoning(accessOf(request), idParam(request, 'blockId'), newZoning.parse(request.body), await todayOf(accessOf(request), new Date()));
     response.status(202).json(made);
   });
   router.get('/blocks/:blockId/zonings', allow('estate.see', 'read'), async (request, response) => {

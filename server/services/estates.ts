@@ -5,6 +5,7 @@ import { measures } from '../../shared/catalog/measures.ts';
 import { phaseProblem, startingPhases } from '../../shared/season/phases.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Unusable } from '../errors.ts';
+import { estateDay } from '../ground/estateDay.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
 import { BackupRecord } from '../models/BackupRecord.ts';
 import { Estate } from '../models/Estate.ts';
@@ -28,6 +29,9 @@ export async function createEstate(personId: string, input: NewEstate, today: st
     return estate.id;
   });
 }
+
+/** The calendar day that it is at the estate. */
+export const todayOf = (access: Access, now: Date): Promise<string> => estateDay(access.estateId, now);
 
 /** Rows of the catalogue as an estate's own measures, to be changed from there. */
 export function startingMeasures(estateId: string) {

@@ -1,7 +1,7 @@
 import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Missing, Unusable } from '../errors.ts';
-import { dayIn } from '../ground/dayIn.ts';
+import { dayIn } from '../../shared/season/dayIn.ts';
 import { peopleWhoMay } from '../ground/peopleWhoMay.ts';
 import { restrictionViews } from '../ground/restrictionViews.ts';
 import { queueMail } from '../mail/outbox.ts';

@@ -3,6 +3,7 @@ import { permissions, reachOf, type Permission, type Reach } from '../../shared/
 import { isRole, type Role } from '../../shared/catalog/roles.ts';
 import { estateSettings } from '../../shared/contracts/estate.ts';
 import type { Session, SessionEstate } from '../../shared/contracts/session.ts';
+import { dayIn } from '../../shared/season/dayIn.ts';
 import { Estate } from '../models/Estate.ts';
 import { asGeoJson } from '../models/geometry.ts';
 import { Membership } from '../models/Membership.ts';
@@ -10,7 +11,7 @@ import { Person } from '../models/Person.ts';
 import { Season } from '../models/Season.ts';
 
 /** What the browser needs to know of the signed-in person: who, in which estates, with which reach. */
-export async function describeSession(personId: string | null, options: { csrfToken: string; demo: boolean; today: string }): Promise<Session> {
+export async function describeSession(personId: string | null, options: { csrfToken: string; demo: boolean; now: Date }): Promise<Session> {
   const person = personId === null ? undefined : await Person.query().findById(personId);
   if (!person) return { person: null, estates: [], csrfToken: options.csrfToken, demo: options.demo };
   return {
@@ -22,13 +23,13 @@ export async function describeSession(personId: string | null, options: { csrfTo
       units: person.units,
       theme: person.theme as NonNullable<Session['person']>['theme'],
     },
-    estates: await estatesOf(person.id, options.today),
+    estates: await estatesOf(person.id, options.now),
     csrfToken: options.csrfToken,
     demo: options.demo,
   };
 }
 
-async function estatesOf(personId: string, today: string): Promise<SessionEstate[]> {
+async function estatesOf(personId: string, now: Date): Promise<SessionEstate[]> {
   const open = await Membership.query()
     .where({ personId })
     .whereNull('endedAt')
@@ -44,7 +45,8 @@ async function estatesOf(personId: string, today: string): Promise<SessionEstate
       name: estate.name,
       roles,
       permissions: reachTable(roles),
-      season: seasonInForce(seasons.filter((season) => season.estateId === estate.id), today),
+      season: seasonInForce(seasons.filter((season) => season.estateId === estate.id), dayIn(estate.timeZone, now)),
+      timeZone: estate.timeZone,
       settings: estateSettings.parse(estate.settings),
       marker: markerOf(estate),
       isDemo: estate.isDemo,

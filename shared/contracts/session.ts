@@ -17,6 +17,8 @@ export const sessionEstate = z.object({
   /** How far each action reaches for this person here; an action that is missing is not allowed. */
   permissions: z.partialRecord(z.enum(permissionIds), reach),
   season: seasonView.nullable(),
+  /** The estate's days begin by it. */
+  timeZone: z.string(),
   settings: estateSettings,
   marker: z.tuple([z.number(), z.number()]).nullable(),
   isDemo: z.boolean(),

@@ -5,6 +5,7 @@ import { may, type Permission, type Reach } from '../../shared/catalog/permissio
 import type { invitationAnswer } from '../../shared/contracts/people.ts';
 import type { CrewOffer } from '../../shared/contracts/phones.ts';
 import type { personChange, Session, SessionEstate } from '../../shared/contracts/session.ts';
+import { dayIn } from '../../shared/season/dayIn.ts';
 import { readStored, writeStored } from '../lib/deviceStore.ts';
 import { http, setCsrfToken } from '../lib/http.ts';
 
@@ -32,6 +33,9 @@ export const useSessionStore = defineStore('session', () => {
     isLoaded.value = true;
     setCsrfToken(next.csrfToken);
   }
+
+  /** The calendar day at the estate, yyyy-mm-dd: what counts by days counts by it, wherever one reads. */
+  const today = () => dayIn(estate.value?.timeZone ?? 'UTC', new Date());
 
   /** True when the person reaches at least so far in the current estate; the server decides, menus only mirror it. */
   function can(action: Permission, atLeast: Reach = 'do'): boolean {
@@ -85,5 +89,5 @@ export const useSessionStore = defineStore('session', () => {
     session.value = { ...nobody, csrfToken: session.value.csrfToken, demo: session.value.demo };
   }
 
-  return { session, person, estates, estate, isLoaded, isCrewOnly, can, load, recall, signIn, crewOffer, signInWithPin, signOut, acceptInvitation, changePerson, chooseEstate, forget };
+  return { session, person, estates, estate, isLoaded, isCrewOnly, can, today, load, recall, signIn, crewOffer, signInWithPin, signOut, acceptInvitation, changePerson, chooseEstate, forget };
 });

@@ -13,7 +13,7 @@ function round(stops: WalkStop[], asked = measures): FieldRound {
   return {
     id: '', planId: '', planName: 'Plan', blockId: '', blockName: 'Marl', estateName: 'Estate', onDate: '2026-08-20', state: 'sent', gate: 'North gate', notes: '', startPostColour: 'red', endPostColour: 'blue', vineOneEnd: 'start',
     people: [], zones: [{ number: 1, name: 'Upper + Lower', colour: null, vines: 100, targets: stops.length }], measures: asked,
-    rows: [{ id: 'r3', label: '3', firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [] }],
+    rows: [{ id: 'r3', label: '3', firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [], ends: null }],
     stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], lifters: [], checkedAt: '', acknowledgedAt: null,
   };
 }

@@ -27,7 +27,9 @@ describe('the demo estate', () => {
 
   it('stands between veraison and the pick of a season that holds today', () => {
     for (const today of ['2028-02-29', '2028-09-01', '2028-12-31']) {
-      const days = demoDays(today);
+      const now = new Date(`${today}T01:30:00Z`);
+      const days = demoDays(today, now);
+      expect(days.dawn < now).toBe(true);
       const { from, to, phases } = seasonOffsets(0);
       expect(days.day(from) <= today && today <= days.day(to)).toBe(true);
       expect(days.day(phases.veraison![1]) < today && today < days.day(phases.pick![0])).toBe(true);

@@ -10,7 +10,7 @@ import { Reading } from '../../models/Reading.ts';
 import { Round } from '../../models/Round.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
-import { dayIn } from '../../ground/dayIn.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import { restrictionsInForce } from './restrictions.ts';
 import { vineTotals } from './vineCounts.ts';
 

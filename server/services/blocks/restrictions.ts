@@ -1,5 +1,6 @@
 import { raw } from 'objection';
 import type { RestrictionInForce } from '../../../shared/contracts/blocks.ts';
+import { estateDay } from '../../ground/estateDay.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
 
 interface InForce {
@@ -9,13 +10,14 @@ interface InForce {
 
 /** Entry restrictions in force now, the one that ends last for each block, and the latest day before which nothing may be picked. */
 export async function restrictionsInForce(estateId: string, blockIds: string[], now: Date): Promise<(blockId: string) => InForce> {
+  const today = await estateDay(estateId, now);
   const rows = (await EntryRestriction.query()
     .alias('e')
     .join('people as p', 'p.id', 'e.setBy')
     .where('e.estateId', estateId)
     .whereIn('e.blockId', blockIds)
     .whereNull('e.liftedAt')
-    .where((query) => query.where((open) => open.where('e.startsAt', '<=', now).where('e.endsAt', '>', now)).orWhere('e.noPickBefore', '>', now.toISOString().slice(0, 10)))
+    .where((query) => query.where((open) => open.where('e.startsAt', '<=', now).where('e.endsAt', '>', now)).orWhere('e.noPickBefore', '>', today))
     .orderBy('e.endsAt', 'desc')
     .select('e.*', 'p.name as setByName', raw('(e.starts_at <= ? and e.ends_at > ?)', [now, now]).as('closed'))) as (EntryRestriction & { setByName: string; closed: boolean })[];
   return (blockId) => {

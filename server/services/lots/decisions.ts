@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import type { DecisionView, LotsBoard } from '../../../shared/contracts/lots.ts';
 import type { Access } from '../../access/access.ts';
+import { estateDay } from '../../ground/estateDay.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotDecision } from '../../models/LotDecision.ts';
 import { Person } from '../../models/Person.ts';
@@ -11,7 +12,7 @@ type Shown = DecisionView['shown'];
 /** What the board shows of a lot now: the lot, its zones and its tank. */
 export async function boardOfLot(access: Access, lotId: string, now: Date): Promise<Shown> {
   const { scenarioId } = await Lot.query().findOne({ estateId: access.estateId, id: lotId }).throwIfNotFound();
-  return shownOf(await lotsBoard(access, { scenarioId, today: now.toISOString().slice(0, 10) }), lotId);
+  return shownOf(await lotsBoard(access, { scenarioId, today: await estateDay(access.estateId, now) }), lotId);
 }
 
 export function shownOf(board: LotsBoard, lotId: string): Shown {

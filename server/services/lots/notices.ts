@@ -7,6 +7,7 @@ import type { Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { noticeSheet } from '../../exporters/noticeSheet.ts';
 import { queueMail } from '../../mail/outbox.ts';
+import { estateDay } from '../../ground/estateDay.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Lot } from '../../models/Lot.ts';
@@ -32,7 +33,7 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
   const scenario = await Scenario.query().findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
   if (!scenario.isLive) throw new Unusable('whatIf', 'A notice is sent from the lots in force, not from a what-if.');
   if (lot.state === 'draft' || lot.pickOn === null) throw new Unusable('notConfirmed', `Confirm the lot "${lot.name}" and its date first; then send the notice.`);
-  const board = await lotsBoard(access, { scenarioId: scenario.id, today: options.now.toISOString().slice(0, 10) });
+  const board = await lotsBoard(access, { scenarioId: scenario.id, today: await estateDay(estateId, options.now) });
   const body = bodyOf(board.lots.find((one) => one.id === lotId)!, { input, pickOn: lot.pickOn, labels: new Map(board.zones.flatMap((zone) => zone.rows.map((row) => [row.id, row.label]))), tank: board.tanks.find((tank) => tank.id === lot.tankId)?.name ?? null });
   const recipients = await recipientsOf(estateId, input.people);
   return PickNotice.transaction(async (trx) => {

@@ -1,7 +1,7 @@
 import { may, type Permission, type Reach } from '../../../shared/catalog/permissions.ts';
 import type { TodayLine, TodayView } from '../../../shared/contracts/today.ts';
 import type { Access } from '../../access/access.ts';
-import { dayIn } from '../../ground/dayIn.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import { Estate } from '../../models/Estate.ts';
 import { conflictLines, markLines, noticeLines, roundLines } from './fieldLines.ts';
 import { lackingLines, questionLines, restrictionLines, zoningLines } from './groundLines.ts';

@@ -7,7 +7,7 @@ import { randomNormal, seededRandom } from '../../../shared/analysis/random.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 
 /** Where the demo estate lies on the day of the test. */
-const place = placeOn(new Date().toISOString().slice(0, 10));
+export const place = placeOn(new Date().toISOString().slice(0, 10));
 
 export interface UploadFile {
   name: string;

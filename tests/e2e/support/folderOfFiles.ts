@@ -1,8 +1,7 @@
 import { frameOf } from '../../../server/demo/layerFiles.ts';
-import { estate } from '../../../server/demo/marlhaven.ts';
 import { writeTiff, type TiffPlan } from '../../core/importers/writeTiff.ts';
 import { patchEntries, writeZip } from '../../core/importers/writeZip.ts';
-import { corner, field, type UploadFile } from './files.ts';
+import { corner, field, place, type UploadFile } from './files.ts';
 
 /** What an agronomist finds in the folder of last year: one good picture among ten damaged or doubtful files. */
 
@@ -11,8 +10,8 @@ const tiff = (name: string, bytes: Uint8Array) => file(name, 'image/tiff', bytes
 
 /** An index over the field and 10 m around it, in pixels of half a metre; it rises to the east. */
 function index(plan: Partial<TiffPlan> = {}): Uint8Array {
-  const { anchor } = frameOf();
-  const geo = { epsg: estate.epsg, x: anchor[0] + field.west - 10, y: anchor[1] + field.south + field.height + 10, pixel: 0.5, ...plan.geo };
+  const { anchor } = frameOf(place);
+  const geo = { epsg: place.epsg, x: anchor[0] + field.west - 10, y: anchor[1] + field.south + field.height + 10, pixel: 0.5, ...plan.geo };
   return writeTiff({ width: 2 * (field.width + 20), height: 2 * (field.height + 20), type: 'f32', value: vigour, ...plan, geo });
 }
 const vigour = (col: number, row: number) => 0.35 + col / 2000 + 0.02 * Math.sin(col * 1.7 + row * row);

@@ -20,6 +20,7 @@ import { crewRoutes } from './routes/crew.ts';
 import { fieldPhotoRoutes } from './routes/fieldPhotos.ts';
 import { describedApi } from './routes/openapi.ts';
 import { formatRoutes } from './routes/formats.ts';
+import { earlierRoutes } from './routes/earlier.ts';
 import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { harvestRoutes, noticeStateRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
@@ -111,7 +112,7 @@ function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
   router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
-  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }));
+  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }), earlierRoutes({ receive: receiveFiles(labFileBytes) }));
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
   router.use(harvestRoutes({ publicUrl }), weatherRoutes());
   router.use(todayRoutes(), searchRoutes());

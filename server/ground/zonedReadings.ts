@@ -2,6 +2,7 @@ import type { Point } from 'geojson';
 import { toUtm } from '../../shared/geo/utm.ts';
 import { Bag } from '../models/Bag.ts';
 import { AuditEntry } from '../models/AuditEntry.ts';
+import { EarlierFile } from '../models/EarlierFile.ts';
 import { Estate } from '../models/Estate.ts';
 import { asGeoJson } from '../models/geometry.ts';
 import { Reading } from '../models/Reading.ts';
@@ -81,7 +82,7 @@ function correctionsBy(until: Date | null) {
 }
 
 /** What the history says of readings that were left out, or taken in again, after that moment: their reason as it stood then. */
-async function exclusionsAt(estateId: string, rows: readonly { id: string }[], until: Date): Promise<Map<string, string | null>> {
+async function exclusionsAt(estateId: string, rows: readonly Pick<Reading, 'id' | 'earlierFileId' | 'excludedReason'>[], until: Date): Promise<Map<string, string | null>> {
   const later = await AuditEntry.query()
     .where({ estateId, subjectType: 'reading' })
     .whereIn('action', ['readings.exclude', 'readings.include'])
@@ -89,7 +90,15 @@ async function exclusionsAt(estateId: string, rows: readonly { id: string }[], u
     .whereIn('subjectId', rows.map(({ id }) => id))
     .orderBy('id', 'desc');
   // Newest first, so that the first deed after that moment is written last and its "before" stays.
-  return new Map(later.map(({ subjectId, before }) => [subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null]));
+  const then = new Map(later.map(({ subjectId, before }) => [subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null]));
+  // A whole table taken back after that moment was still counted then.
+  const files = await EarlierFile.query().where({ estateId, state: 'takenBack' }).where('takenBackAt', '>', until);
+  const reasonOf = new Map(files.map(({ id, takenBackReason }) => [id, takenBackReason]));
+  for (const { id, earlierFileId, excludedReason } of rows) {
+    const reason = earlierFileId === null ? undefined : reasonOf.get(earlierFileId);
+    if (reason !== undefined && (then.has(id) ? then.get(id)! : excludedReason) === reason) then.set(id, null);
+  }
+  return then;
 }
 
 /** The state of the lab's figures as the history had it at that moment; a figure that it does not name had not been checked. */

@@ -37,6 +37,8 @@ export class Reading extends EstateModel {
   declare method: string;
   declare analysedOn: string | null;
   declare labFileId: string | null;
+  /** The table of earlier readings that it came with. */
+  declare earlierFileId: string | null;
   /** Who gave it its state last, and when. */
   declare stateBy: string | null;
   declare stateAt: Date | null;

@@ -3,6 +3,7 @@ import { bagBatch, bagBatchAnswer, bagList, bagReceipt, bagReceiptAnswer, bagsMi
 import { blockChange, blockLine, blockView, changedBlock, newBlock, outlineCheck, outlineToCheck } from '../../shared/contracts/blocks.ts';
 import { estateChange, estateFacts, newEstate, seasonChange } from '../../shared/contracts/estate.ts';
 import { arrivedUploads, importPatch, importView, outlinesMade, outlinesTaken } from '../../shared/contracts/imports.ts';
+import { earlierFileView, earlierStore, earlierTakeBack } from '../../shared/contracts/earlier.ts';
 import { exclusionRequest, labBench, labFileAnswers, labFileStore, labFileView, labOutcome, labResultBatch, stateChange } from '../../shared/contracts/lab.ts';
 import { lotChange, lotParts, lotsBoard, newLot, newScenario, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
@@ -131,6 +132,14 @@ const operations: Operation[] = [
   { method: 'patch', path: '/api/estates/{estateId}/lab/files/{fileId}', summary: 'Answer questions about a file', body: labFileAnswers, answer: labFileView },
   { method: 'post', path: '/api/estates/{estateId}/lab/files/{fileId}/store', summary: 'Store the results of a file when no question is open', body: labFileStore, answer: labFileView },
   { method: 'get', path: '/api/estates/{estateId}/lab/files/{fileId}/original', summary: 'The file of a laboratory, byte for byte' },
+  { method: 'get', path: '/api/estates/{estateId}/earlier-readings', summary: 'Tables of readings of earlier visits, newest first', answer: z.object({ items: z.array(earlierFileView), total: z.int() }) },
+  { method: 'post', path: '/api/estates/{estateId}/earlier-readings', summary: 'Send one table of readings of earlier visits in the multipart field "files"; stores no reading', answer: earlierFileView },
+  { method: 'get', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}', summary: 'What was understood of a table, what is asked, and what would be stored', answer: earlierFileView },
+  { method: 'patch', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}', summary: 'Answer questions about a table', body: labFileAnswers, answer: earlierFileView },
+  { method: 'post', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}/store', summary: 'Store the readings of a table, all or none; may be repeated', body: earlierStore, answer: earlierFileView },
+  { method: 'post', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}/take-back', summary: 'Leave all readings of a table out of the figures, for a reason', body: earlierTakeBack, answer: earlierFileView },
+  { method: 'delete', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}', summary: 'Put a table aside of which nothing is stored' },
+  { method: 'get', path: '/api/estates/{estateId}/earlier-readings/{earlierFileId}/original', summary: 'The table itself, byte for byte' },
   { method: 'post', path: '/api/estates/{estateId}/rounds/{roundId}/labels', summary: 'Bag labels of a round as PDF: sheet (a4, letter) or single; the same labels again when asked again' },
   { method: 'post', path: '/api/estates/{estateId}/labels', summary: 'Blank bag labels as PDF, bound when a bag is closed' },
   { method: 'post', path: '/api/estates/{estateId}/readings', summary: 'Append readings; may be repeated', body: readingBatch, answer: batchAnswer },

@@ -3,6 +3,7 @@ import { may } from '../../shared/catalog/permissions.ts';
 import { estateSettings, type BackupView, type EstateFactsView, type NewEstate, type SeasonChange, type estateChange } from '../../shared/contracts/estate.ts';
 import { measures } from '../../shared/catalog/measures.ts';
 import { phaseProblem, startingPhases } from '../../shared/season/phases.ts';
+import { seasonAround } from '../../shared/season/seasonAround.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Unusable } from '../errors.ts';
 import { estateDay } from '../ground/estateDay.ts';
@@ -54,19 +55,6 @@ export function startingMeasures(estateId: string) {
     skewed: measure.skewed,
     measuredIn: measure.where,
   }));
-}
-
-/** Twelve months from the season's first month, named by the year or years they touch. */
-export function seasonAround(today: string, startMonth: number): { name: string; startsOn: string; endsOn: string } {
-  const year = Number(today.slice(0, 4));
-  const month = Number(today.slice(5, 7));
-  const startYear = month >= startMonth ? year : year - 1;
-  const startsOn = `${startYear}-${String(startMonth).padStart(2, '0')}-01`;
-  const last = new Date(Date.UTC(startYear + 1, startMonth - 1, 0));
-  const endsOn = last.toISOString().slice(0, 10);
-  // A season that begins in the last quarter belongs to the year of its vintage; one across mid-year names both.
-  const name = startMonth === 1 ? String(startYear) : startMonth >= 10 ? String(startYear + 1) : `${startYear}/${String(startYear + 1).slice(2)}`;
-  return { name, startsOn, endsOn };
 }
 
 /** What the estate says of itself and has set; who may restore is told of backups as well. */

@@ -35,6 +35,7 @@ export const permissions = {
   'rounds.assign': { owner: 'do', admin: 'do', agronomist: 'propose', manager: 'do' },
   'readings.record': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', crew: 'own', lab: 'own' },
   'readings.correct': planners,
+  'readings.import': { ...planners, winemaker: 'do' },
   'conflicts.settle': { ...planners, crew: 'own', lab: 'own' },
   'sheets.print': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', crew: 'own', lab: 'do' },
   'lab.enter': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'propose', lab: 'do' },

@@ -33,6 +33,12 @@ export const labUnits: readonly LabUnit[] = [
   { id: 'malicMgPerL', measure: 'malic', shown: 'mg/L', convert: (value) => value / 1000 },
   { id: 'gPerBerry', measure: 'berryWeight', shown: 'g', convert: same },
   { id: 'gPer100Berries', measure: 'berryWeight', shown: 'g / 100', convert: (value) => value / 100 },
+  { id: 'gPerCluster', measure: 'clusterWeight', shown: 'g', convert: same },
+  { id: 'kgPerCluster', measure: 'clusterWeight', shown: 'kg', convert: (value) => value * 1000 },
+  { id: 'kgPruned', measure: 'pruningWeight', shown: 'kg', convert: same },
+  { id: 'gPruned', measure: 'pruningWeight', shown: 'g', convert: (value) => value / 1000 },
+  { id: 'kgPicked', measure: 'yieldPerVine', shown: 'kg', convert: same },
+  { id: 'gPicked', measure: 'yieldPerVine', shown: 'g', convert: (value) => value / 1000 },
 ];
 
 /** Units of a measure, its own first; a measure without rows here has none but its own. */

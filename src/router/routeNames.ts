@@ -28,6 +28,7 @@ export const routePlaces = {
   blockEdit: { path: '/e/:estateId/blocks/:blockId/facts', frame: 'office', needs: ['blocks.edit', 'propose'], under: 'estate' },
   layer: { path: '/e/:estateId/blocks/:blockId/layers/:layerId', frame: 'office', under: 'estate' },
   imports: { path: '/e/:estateId/imports', frame: 'office', needs: ['layers.import', 'read'] },
+  earlierReadings: { path: '/e/:estateId/earlier-readings', frame: 'office', needs: ['readings.import', 'do'], under: 'imports' },
   zones: { path: '/e/:estateId/zones', frame: 'office' },
   zoningBench: { path: '/e/:estateId/blocks/:blockId/zoning', frame: 'office', under: 'zones' },
   zoning: { path: '/e/:estateId/blocks/:blockId/zoning/:zoningId', frame: 'office', under: 'zones' },

@@ -22,6 +22,7 @@ export const views: Partial<Record<RouteName, LazyView>> = {
   blockEdit: () => import('../views/blocks/BlockEditView.vue'),
   layer: () => import('../views/blocks/LayerCheckView.vue'),
   imports: () => import('../views/imports/ImportDeskView.vue'),
+  earlierReadings: () => import('../views/earlier/EarlierReadingsView.vue'),
   lab: () => import('../views/lab/LabView.vue'),
   ripeness: () => import('../views/ripeness/RipenessView.vue'),
   blockRipeness: () => import('../views/ripeness/RipenessView.vue'),

@@ -1,5 +1,5 @@
 import type { ImportWarning } from '../understood.ts';
-import { cellNumber, type DecimalMark } from './cellNumbers.ts';
+import { cellNumber, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
 import type { ParsedTable } from './parseTable.ts';
 
 export interface CollectedColumns {

@@ -9,10 +9,10 @@ import { sniffFormat } from '../sniffFormat.ts';
 import { decodeText, type DecodedText } from '../textEncoding.ts';
 import type { ImportQuestion, ImportWarning, PointsUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
 import { describeField } from '../describeFields.ts';
-import { cellNumber, findDecimalMark, type DecimalMark } from './cellNumbers.ts';
+import { cellNumber, findDecimalMark, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
 import { collectColumns } from './collectColumns.ts';
 import { parseTable, type ParsedTable } from './parseTable.ts';
-import { findPositionColumns, type PositionColumns } from './positionColumns.ts';
+import { findPositionColumns, type PositionColumns } from '../../../shared/importing/positionColumns.ts';
 import { readPositions, type PositionReading } from './readPositions.ts';
 
 /** A table of points: conductivity readings, old samples. Rows without a usable position are set aside by reason. Throws ImportProblem. */

@@ -1,8 +1,8 @@
 import type { ImportWarning } from '../understood.ts';
-import { cellNumber, type DecimalMark } from './cellNumbers.ts';
-import { readAngle } from './degrees.ts';
+import { cellNumber, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
+import { readAngle } from '../../../shared/importing/degrees.ts';
 import type { ParsedTable } from './parseTable.ts';
-import type { PositionColumns } from './positionColumns.ts';
+import type { PositionColumns } from '../../../shared/importing/positionColumns.ts';
 
 export interface PositionReading {
   /** Indexes of the rows with a usable position. */

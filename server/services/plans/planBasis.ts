@@ -3,6 +3,7 @@ import type { BasisMeasure, PlanBasis, SpreadChoices } from '../../../shared/con
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { pilotReadingsOf } from '../../../shared/sampling/pilotReadings.ts';
+import { vintageYear } from '../../../shared/season/seasonAround.ts';
 import { spreadsOf } from '../../../shared/sampling/planBasis.ts';
 import type { HistoryReading } from '../../../shared/sampling/pooling.ts';
 import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
@@ -33,7 +34,7 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
     Season.query().where({ estateId }),
     MeasureRecord.query().where({ estateId, inUse: true }).orderBy('code'),
   ]);
-  const yearOf = new Map(seasons.map((season) => [season.id, Number(season.startsOn.slice(0, 4))]));
+  const yearOf = new Map(seasons.map((season) => [season.id, vintageYear(season)]));
   const season = seasons.find(({ id }) => id === zoning.seasonId)!;
   const zoned = await zonedReadings(estateId, { ground, zoneOf });
   const own = historyOf(zoned, ground.block.id, yearOf);

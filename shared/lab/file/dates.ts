@@ -18,7 +18,9 @@ export function readDates(cells: ReadonlyMap<number, RawCell>, within: { earlies
     const clear = clearDate(cell);
     if (clear !== null) found.set(line, clear);
     const parts = /^(\d{1,2})[/.\- ](\d{1,2})[/.\- ](\d{2}|\d{4})\b/.exec(cellText(cell));
-    if (clear === null && parts) open.set(line, [Number(parts[1]), Number(parts[2]), fullYear(Number(parts[3]))]);
+    const triple = parts && ([Number(parts[1]), Number(parts[2]), fullYear(Number(parts[3]))] as [number, number, number]);
+    // A day that is none in either order tells nothing about the others.
+    if (clear === null && triple && (dayOf(triple, 'dmy') ?? dayOf(triple, 'mdy')) !== null) open.set(line, triple);
   }
   if (open.size === 0) return found;
   const order = orderOf([...open.values()], within, asking);

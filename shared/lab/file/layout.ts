@@ -10,7 +10,7 @@ export interface LabTable {
   readonly rows: readonly { readonly line: number; readonly cells: readonly RawCell[] }[];
 }
 
-type Numbered = { line: number; cells: RawCell[] };
+type Numbered = { line: number; cells: readonly RawCell[] };
 
 /** The sheet with labels; asked where several have them. */
 export function chooseSheet(file: RawLabFile, asking: Asking): RawSheet | null {
@@ -31,16 +31,24 @@ function countLabels({ rows }: RawSheet): number {
 
 /** Finds the table; null while the column of the label is not known. */
 export function findTable(sheet: RawSheet, asking: Asking): LabTable | null {
-  const grid = upright(sheet, asking);
+  return tableOf(upright(sheet, asking), asking, true);
+}
+
+/** Finds a table whose lines are known by something else than a label: `codeColumn` is -1. Null where no line has two figures. */
+export function findUnlabelledTable(sheet: RawSheet, asking: Asking): LabTable | null {
+  return tableOf(sheet.rows.map((row) => [...row]), asking, false);
+}
+
+function tableOf(grid: readonly RawCell[][], asking: Asking, labelled: boolean): LabTable | null {
   const lines: Numbered[] = grid.map((cells, at) => ({ line: at + 1, cells })).filter(({ cells }) => cells.some((cell) => !isBlank(cell)));
   const width = Math.max(0, ...lines.map(({ cells }) => cells.length));
-  const counts = Array.from({ length: width }, (_, column) => lines.filter(({ cells }) => labelIn(cells[column]) !== null).length);
+  const counts = Array.from({ length: width }, (_, column) => (labelled ? lines.filter(({ cells }) => labelIn(cells[column]) !== null).length : 0));
   const most = Math.max(0, ...counts);
   const first = most > 0 ? lines.findIndex(({ cells }) => cells.some((cell) => labelIn(cell) !== null)) : lines.findIndex(({ cells }) => cells.filter(looksNumeric).length >= 2);
   if (first < 0) return null;
   const head = headerLines(lines, first);
   const titles = titlesOf(head, width);
-  const codeColumn = most > 0 ? counts.indexOf(most) : askCodeColumn(titles, lines.slice(first), asking);
+  const codeColumn = !labelled ? -1 : most > 0 ? counts.indexOf(most) : askCodeColumn(titles, lines.slice(first), asking);
   if (codeColumn === null) return null;
   const before = lines.slice(0, first).length - head.length;
   if (before > 0) asking.say('linesBefore', { count: before });
@@ -90,7 +98,8 @@ function askCodeColumn(titles: readonly string[], rows: readonly Numbered[], ask
   return answer === null ? null : Number(answer);
 }
 
-function examples(title: string, rows: readonly Numbered[], column: number): string {
+/** A title with what stands below it. */
+export function examples(title: string, rows: readonly Numbered[], column: number): string {
   const seen = rows.map(({ cells }) => cellText(cells[column])).filter((text) => text !== '').slice(0, 3).join(', ');
   return seen === '' ? title : `${title}: ${seen}`;
 }

@@ -12,6 +12,16 @@ interface Reading {
   readonly labels: ReadonlyMap<number, string>;
   readonly dates: ReadonlyMap<number, string>;
   readonly temperatureColumn: number | null;
+  /** What becomes of a cell that is no figure, or far from any usual one; asked where nothing is said here. */
+  readonly settle?: (cell: DoubtfulCell) => 'keep' | 'leaveOut';
+}
+
+export interface DoubtfulCell {
+  readonly code: 'cellOdd' | 'cellDate' | 'cellUnread';
+  readonly line: number;
+  readonly title: string;
+  readonly text: string;
+  readonly canKeep: boolean;
 }
 
 /** Turns cells into results in the measures' own units, and says in words how the first of each column was read. */
@@ -36,14 +46,19 @@ export function readValues(values: readonly LooseValue[], reading: Reading, aski
       }
     }
     if (Number.isNaN(own) || !isPlausible(measure, value.unit, figure.value)) {
-      const answer = asking.ask(`cell:${value.line}:${value.title}`, { code: 'cellOdd', params: { line: value.line, title: value.title, text: cellText(value.cell) }, choices: Number.isNaN(own) ? ['leaveOut'] : ['keep', 'leaveOut'] });
-      if (answer !== 'keep') continue;
+      if (settled({ code: 'cellOdd', line: value.line, title: value.title, text: cellText(value.cell), canKeep: !Number.isNaN(own) }, reading, asking) !== 'keep') continue;
     }
     const unitTyped = labUnit(value.unit)?.shown ?? measure.unit;
     sayOnce(value, { shown: cellText(value.cell), read: Number(own.toFixed(measure.decimals + 1)), unit: measure.unit, unitTyped, below: figure.below }, asking);
     entries.push({ line: value.line, code, measure: measure.code, value: Number(own.toFixed(6)), below: figure.below, typed: cellText(value.cell).slice(0, 40), unitTyped, analysedOn: reading.dates.get(value.line) ?? null, odd: !isUsual(measure, own), corrected });
   }
   return entries;
+}
+
+function settled(cell: DoubtfulCell, { settle }: Reading, asking: Asking): string | null {
+  if (settle) return settle(cell);
+  const { code, line, title, text, canKeep } = cell;
+  return asking.ask(`cell:${line}:${title}`, { code, params: { line, title, text }, choices: canKeep ? ['keep', 'leaveOut'] : ['leaveOut'] });
 }
 
 /** The decimal mark that the clear cells prove; asked only when ambiguous ones are left that could be either. */
@@ -75,7 +90,7 @@ function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalM
   const { cell, line, title } = value;
   if (typeof cell === 'number') return { value: cell, below: false };
   if (typeof cell === 'object' && cell !== null) {
-    asking.ask(`cell:${line}:${title}`, { code: 'cellDate', params: { line, title, text: cell.date }, choices: ['leaveOut'] });
+    settled({ code: 'cellDate', line, title, text: cell.date, canKeep: false }, reading, asking);
     return null;
   }
   const text = cellText(cell);
@@ -85,7 +100,7 @@ function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalM
   if (figure.kind === 'number') return figure;
   // Until the mark is told the question about it stands; nothing more is asked of the cell.
   if (figure.kind === 'none') asking.say('noResult', { word: figure.word });
-  if (figure.kind === 'unreadable') asking.ask(`cell:${line}:${title}`, { code: 'cellUnread', params: { line, title, text }, choices: ['leaveOut'] });
+  if (figure.kind === 'unreadable') settled({ code: 'cellUnread', line, title, text, canKeep: false }, reading, asking);
   return null;
 }
 

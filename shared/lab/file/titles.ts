@@ -13,6 +13,14 @@ interface TitleRow {
 
 const ignored: ColumnRole = { kind: 'ignored' };
 const of = (measure: string, unit: string | null): ColumnRole => ({ kind: 'measure', measure, unit });
+/** A weight in kilograms or grams, as the title says. */
+const weighed = (measure: string, kg: string, g: string) => (title: string) => of(measure, /\bkg\b|kilo/.test(title) ? kg : /\bg\b|\bgr\b|gram/.test(title) ? g : null);
+
+const cluster = '(?:cluster|bunch|grappe|racim|grappol|cacho)';
+const berry = '(?:berr|bai[ea]|baya|acin|bago|beeren)';
+const counted = '(?:\\bn\\b|\\bno\\b|\\bnr\\b|\\bnum|number|count|compt|cont|nombre|zahl|#)';
+const weight = '(?:weight|poids|peso|mass|gewicht|\\bk?g\\b|\\bgr\\b|gram)';
+const either = (one: string, other: string) => new RegExp(`${one}.*${other}|${other}.*${one}`);
 
 /**
  * Words of five languages, in the order of trying: what looks alike but is not wanted comes first. Titles are compared
@@ -35,9 +43,16 @@ const rows: readonly TitleRow[] = [
   { pattern: /mmol/, role: () => of('ta', 'mmolPerL') },
   { pattern: /tartar|tartri|weins|h2t|c4h6o6/, role: () => of('ta', 'tartaricGPerL') },
   { pattern: /acid|acidez|saure|\bta\b|\bat\b|\batt\b|\bact\b/, role: () => of('ta', null) },
-  { pattern: /(berr|bai[ea]|acin|bago|beeren).*(weight|poids|peso|mass|gewicht)|(weight|poids|peso|mass).*(berr|bai[ea]|acin|bago)/, role: (title) => of('berryWeight', /100/.test(title) ? 'gPer100Berries' : 'gPerBerry') },
-  { pattern: /temp|^t ?°|°c\b/, role: () => ({ kind: 'temperature' }) },
   { pattern: /\bdate|fecha|\bdata\b|datum|\bdia\b|\bjour\b/, role: () => ({ kind: 'date' }) },
+  { pattern: either(cluster, weight), role: weighed('clusterWeight', 'kgPerCluster', 'gPerCluster') },
+  { pattern: new RegExp(`${berry}\\w* ?(/|per|par|por|pro|a|al|je) ?(l\\W)?${cluster}`), role: () => of('berriesPerCluster', null) },
+  { pattern: new RegExp(`${either(cluster, counted).source}|^${cluster}\\w*( ?(/|per|par|por|pro|a) ?(\\w+))?$`), role: () => of('clusterCount', null) },
+  { pattern: /prun|\btaille|sarment|\bpoda\b|potatur|schnittholz/, role: weighed('pruningWeight', 'kgPruned', 'gPruned') },
+  { pattern: /yield|rendement|rendimiento|\bresa\b|produzion|produccion|producao|rendimento|ertrag|\bk?g ?(\/|per|par|por|a) ?(vine|cep|souche|cepa|vite|ceppo|videira|stock)/, role: weighed('yieldPerVine', 'kgPicked', 'gPicked') },
+  { pattern: /\brot\b|botryt|pourrit|podred|podrid|marciume/, role: () => of('rotShare', null) },
+  { pattern: either(berry, weight), role: (title) => of('berryWeight', /100/.test(title) ? 'gPer100Berries' : 'gPerBerry') },
+  { pattern: /\b(year|vintage|season|annee|millesime|ano|anada|anno|annata|safra|campana|time|heure|hora|ora|zon[ea]s?|altitud\w*|elevation|hdop|accuracy|weather)\b/, role: () => ignored },
+  { pattern: /temp|^t ?°|°c\b/, role: () => ({ kind: 'temperature' }) },
   { pattern: /label|etiq|etich|bag\b|sample|echant|muestra|campion|amostra|probe|code|codigo|codice|\bref|\bid\b|\bno\b|\bn°/, role: () => ({ kind: 'code' }) },
   { pattern: /^(unit|unite|unidad|unita|unidade|einheit)s?$/, role: () => ({ kind: 'unit' }) },
   { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert)s?e?$/, role: () => ({ kind: 'value' }) },

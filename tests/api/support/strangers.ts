@@ -4,7 +4,7 @@ import { randomUUID } from 'node:crypto';
 /** Which table holds the thing that a parameter of an address names. */
 export const tableOf: Record<string, string> = {
   personId: 'people', invitationId: 'invitations', jobId: 'jobs', measureId: 'measures', restrictionId: 'entry_restrictions', readingId: 'readings', conflictId: 'reading_conflicts',
-  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags', seasonId: 'seasons', resultId: 'readings', scenarioId: 'scenarios',
+  zoningId: 'zonings', planId: 'plans', roundId: 'rounds', blockId: 'blocks', layerId: 'layers', importId: 'imports', fileId: 'files', lotId: 'lots', noticeId: 'pick_notices', tankId: 'tanks', phoneId: 'phones', photoId: 'field_photos', bagId: 'bags', seasonId: 'seasons', resultId: 'readings', scenarioId: 'scenarios', earlierFileId: 'earlier_files',
 };
 
 /** Parameters that name no stored thing. */
@@ -29,6 +29,7 @@ export async function layOneOfEach(knex: Knex, estateId: string, personId: strin
   const blockId = await put('blocks', { name: 'Over the Wall', boundary: knex.raw('?::geometry', [outline]), areaM2: 900_000, epsg: 32629, gridKey: 'none' });
   await put('jobs', { kind: 'zoning', subjectType: 'zoning' });
   await put('files', { sha256: '0'.repeat(64), bytes: 1, originalName: 'wall.tif' });
+  await put('earlier_files', { fileId: ids.get('files'), fileName: 'wall.csv' });
   await put('imports', { fileId: ids.get('files'), fileName: 'wall.tif', state: 'ready' });
   await put('layers', { type: 'vigour', name: 'Wall' });
   await put('entry_restrictions', { blockId, startsAt: '2026-01-01', endsAt: '2999-01-01', product: 'Wettable sulphur', labelInterval: '24 h', setBy: personId });

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { cellNumber, findDecimalMark } from '../../../server/importers/points/cellNumbers.ts';
-import { readAngle } from '../../../server/importers/points/degrees.ts';
+import { cellNumber, findDecimalMark } from '../../../shared/importing/cellNumbers.ts';
+import { readAngle } from '../../../shared/importing/degrees.ts';
 import { readPoints } from '../../../server/importers/points/readPoints.ts';
 import { text } from './corpus.ts';
 

@@ -10,6 +10,8 @@ export async function up(knex: Knex): Promise<void> {
       file_name text not null,
       state text not null default 'asks' check (state in ('asks', 'stored', 'dismissed', 'takenBack')),
       answers jsonb not null default '{}',
+      -- Some answers were taken over from the last table with the same columns.
+      remembered boolean not null default false,
       signature text not null default '',
       summary jsonb,
       sent_by uuid references people (id),

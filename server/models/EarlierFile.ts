@@ -11,6 +11,8 @@ export class EarlierFile extends EstateModel {
   declare fileName: string;
   declare state: 'asks' | 'stored' | 'dismissed' | 'takenBack';
   declare answers: LabAnswers;
+  /** Some answers were taken over from the last table with the same columns. */
+  declare remembered: boolean;
   declare signature: string;
   /** What was stored of it. */
   declare summary: EarlierSummary | null;

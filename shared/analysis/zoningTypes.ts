@@ -40,6 +40,8 @@ export interface ZoningOptions {
 /** Readings of one measure of fruit, by grid cell (-1 outside the grid). They test zones and never make them. */
 export interface ZoningReadings {
   readonly measure: string;
+  /** Day of the visit, for the record; the test does not look at it. */
+  readonly on?: string;
   readonly values: readonly { readonly cell: number; readonly row: string | null; readonly value: number }[];
 }
 

@@ -93,7 +93,7 @@ export const zoningView = z.object({
   differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),
   warnings: z.array(reason),
   /** The zones tested on readings of fruit: analysis of variance by zone and a shuffle within rows. */
-  fruit: z.array(z.object({ measure: z.string(), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
+  fruit: z.array(z.object({ measure: z.string(), on: z.array(z.string()), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),

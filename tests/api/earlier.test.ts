@@ -102,7 +102,7 @@ describe('a table of readings of earlier visits', () => {
     expect((await agronomist.patch(`${base()}/${file.id}`, { answers: { 'unit:Sucre': 'litres' } })).body.detail).toMatch(/Choose from/);
     expect((await agronomist.patch(`${base()}/${file.id}`, { answers: { depth: '3' } })).body.detail).toMatch(/is not asked about visits\.csv/);
     const answered = (await agronomist.patch(`${base()}/${file.id}`, { answers: { 'unit:Sucre': 'baume' } })).body as EarlierFileView;
-    expect(answered.summary!.readings).toBe(2);
+    expect([answered.isRemembered, answered.summary!.readings]).toEqual([false, 2]);
     await store(file);
     const next = await sent(table('12,9'), 'next.csv');
     expect(next).toMatchObject({ isRemembered: true, summary: { readings: 1, known: 1 } });

@@ -35,7 +35,7 @@ export async function receiveEarlierFile(access: Access, uploads: readonly Uploa
       const here = await EarlierFile.query(trx).where({ estateId }).whereIn('state', ['asks', 'stored']).whereIn('fileId', StoredFile.query(trx).where({ estateId, sha256 }).select('id')).first();
       if (here) return here;
       const file = await StoredFile.query(trx).insert({ estateId, sha256, bytes, originalName: storable(upload.name).slice(0, 255), uploadedBy: personId });
-      const row = await EarlierFile.query(trx).insertAndFetch({ estateId, fileId: file.id, fileName: shownFileName(storable(upload.name)), answers, signature, sentBy: personId, sentAt: now });
+      const row = await EarlierFile.query(trx).insertAndFetch({ estateId, fileId: file.id, fileName: shownFileName(storable(upload.name)), answers, remembered: Object.keys(answers).length > 0, signature, sentBy: personId, sentAt: now });
       await writeAudit(trx, access, { action: 'earlier.receive', subjectType: 'earlierFile', subjectId: row.id, subjectName: row.fileName, after: { sha256, bytes } });
       return row;
     });
@@ -100,7 +100,7 @@ async function viewOf(access: Access, record: EarlierFile, now: Date): Promise<E
   return {
     ...view, words: [...words], questions: questions.map((question) => ({ ...question, choices: [...question.choices] })),
     refused: refused.slice(0, shownRefused), refusedCount: refused.length, summary: await summaryOf(access.estateId, table),
-    isRemembered: questions.some(({ key, answer }) => answer !== null && isKeptForNext(key)),
+    isRemembered: record.remembered,
   };
 }
 

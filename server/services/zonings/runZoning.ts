@@ -24,10 +24,11 @@ export const zoningJob: JobHandler = {
     const { estateId, subjectId } = context.job;
     const zoning = await Zoning.query().findOne({ estateId, id: subjectId }).throwIfNotFound();
     const ground = await loadBlockVines(estateId, zoning.blockId);
-    const result = await computeInJob<ZoningResult>(context, 'zoning', await inputOf(zoning, ground));
+    const input = await inputOf(zoning, ground);
+    const result = await computeInJob<ZoningResult>(context, 'zoning', input);
     // The last word before anything is kept: throws when the job was cancelled while its thread finished.
     await context.report('store', 1);
-    await storeResult(zoning, result);
+    await storeResult(zoning, result, daysOfFruit(input));
     return { zoningId: zoning.id, advisedZones: result.advisedK };
   },
   failed: async (job: Job) => {
@@ -51,18 +52,24 @@ async function blockInput(zoning: Zoning, ground: BlockVines, options: ZoningReq
   return { grid, layers, readings: await fruitOf(zoning, ground, grid) };
 }
 
-/** The newest visit of each measure of fruit in the zoning's season, up to the moment it was asked for. */
+/** The newest visit of each measure of fruit, up to the moment the zoning was asked for: of its own season, or of an earlier one where that has none yet. */
 async function fruitOf(zoning: Zoning, ground: BlockVines, grid: ZoningInput['grid']): Promise<ZoningReadings[]> {
-  const readings = await zonedReadings(zoning.estateId, { ground, zoneOf: new Uint8Array(ground.vines.count), seasonId: zoning.seasonId, until: zoning.createdAt });
+  const readings = await zonedReadings(zoning.estateId, { ground, zoneOf: new Uint8Array(ground.vines.count), until: zoning.createdAt });
   const counted = readings.filter((reading) => reading.excludedReason === null && reading.vine >= 0 && fruitMeasures.includes(reading.measureCode));
   return [...groupBy(counted, (reading) => reading.measureCode)].map(([measure, all]) => {
     const newest = all.reduce((latest, { visit }) => (visit > latest ? visit : latest), '');
     const values = all.filter(({ visit }) => visit === newest).map(({ vine, value }) => ({ cell: cellAt(grid, [ground.vines.x[vine]!, ground.vines.y[vine]!]), row: ground.stored[ground.vines.row[vine]!]!.id, value }));
-    return { measure, values };
+    return { measure, on: newest, values };
   });
 }
 
-async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> {
+/** Days on which each measure of fruit was read, over all blocks that were zoned together. */
+function daysOfFruit({ readings = [], together = [] }: ZoningInput): Record<string, string[]> {
+  const all = [...readings, ...together.flatMap((block) => block.readings ?? [])];
+  return Object.fromEntries([...groupBy(all, ({ measure }) => measure)].map(([measure, own]) => [measure, [...new Set(own.flatMap(({ on }) => on ?? []))].sort()]));
+}
+
+async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Record<string, string[]>): Promise<void> {
   const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares } = result;
   await Zoning.transaction(async (trx) => {
     const stillWanted = await Zoning.query(trx).findOne({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).forUpdate().select('id');
@@ -76,7 +83,7 @@ async function storeResult(zoning: Zoning, result: ZoningResult): Promise<void> 
     );
     await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({
       state: 'proposed', engineVersion: result.engineVersion, verdict: plainFigures(verdict), advisedZones: result.advisedK,
-      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares }),
+      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, fruitDays, componentShares }),
     });
   });
 }

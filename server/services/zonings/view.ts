@@ -28,6 +28,8 @@ interface StoredEvidence {
   bestSeveral: number;
   warnings: ZoningWarning[];
   fruit?: FruitCheck;
+  /** By measure; zonings of before have none. */
+  fruitDays?: Record<string, string[]>;
 }
 
 interface StoredCandidate {
@@ -95,7 +97,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     evidence: evidence ? await evidenceRows(access, evidence.rows, ground) : [],
     differences: stored ? [...stored.differences] : [],
     warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
-    fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
+    fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, on: evidence?.fruitDays?.[measure] ?? [], n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
     shown: count,
     zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
     problem: job?.problem ?? null,

@@ -24,7 +24,8 @@ export function useLabWords() {
     }));
   }
 
-  const sentence = ({ code, params }: Word): string => t(`lab.word.${code}`, values(params));
+  // A measure without a unit leaves a blank before the full stop.
+  const sentence = ({ code, params }: Word): string => t(`lab.word.${code}`, values(params)).replace(/ \.$/, '.');
   const question = ({ code, params }: Question): string => t(`lab.ask.${code}`, values(params));
   function choice({ code }: Question, { value, label }: Question['choices'][number]): string {
     if (label !== null) return label;

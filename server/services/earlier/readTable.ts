@@ -3,7 +3,7 @@ import type { EarlierBlock, EarlierEntry, EarlierSurroundings, UnderstoodEarlier
 import { readingKey } from '../../../shared/earlier/repeats.ts';
 import { understandEarlier } from '../../../shared/earlier/understand.ts';
 import type { LabAnswers, RawLabFile } from '../../../shared/lab/file/labFile.ts';
-import { dayIn } from '../../ground/dayIn.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import { loadBlockVines } from '../../ground/blockVines.ts';
 import { Block } from '../../models/Block.ts';
 import type { EarlierFile } from '../../models/EarlierFile.ts';

@@ -293,6 +293,7 @@ describe('the printed report', () => {
     expect(a4.subarray(0, 5).toString('latin1')).toBe('%PDF-');
     expect(sheet(a4).map((points) => Math.round((points / 72) * 25.4))).toEqual([210, 297]);
     expect(sheet(letter)).toEqual([612, 792]);
+    for (const zones of [1, 6]) for (const size of ['A4', 'Letter']) expect((await print(`?size=${size}&zones=${zones}`)).toString('latin1').match(/\/Type \/Page\b/g)).toHaveLength(1);
     expect((await manager.get(`${base}/zonings/${zoningId}/report?size=A0`)).status).toBe(422);
   });
 
@@ -305,6 +306,8 @@ describe('the printed report', () => {
     expect(text).toContain('Nothing here is said about ripeness until fruit is tested.');
     expect(text).toContain('Inès Quillard answers for it: Seen on foot');
     expect(text).toMatch(/method version \S+, seed 1/);
+    expect(text).toContain('How the zones were made');
+    expect(text.replace(/\s+/g, ' ')).toMatch(/averaged on cells of \d+\.\d m and smoothed over \d+\.\d m/);
     for (const zone of seen.zones) expect(text).toContain((zone.areaM2 / 10_000).toFixed(2));
     expect(text).toContain('Ødegård–Sípek');
   });

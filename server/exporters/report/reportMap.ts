@@ -46,7 +46,7 @@ export function drawMap(page: Page, report: ZoneReport, box: Box): void {
   }
   trace(page, outline, toPaper);
   page.lineWidth(1.6).strokeColor(ink).stroke();
-  for (const { number, shape } of zones) drawNumber(page, number, toPaper(spotFor(shape)));
+  for (const { number, at } of numberSpots(zones, toPaper)) drawNumber(page, number, at);
   const right = box.x + box.width;
   const [middleX, middleY] = polygonsCentroid(outline);
   drawNorth(page, { x: right - 20, y: box.y + 30, turnDeg: -convergenceDeg(fromUtm([middleX, middleY], report.epsg), report.epsg), letter: 'N' });
@@ -111,14 +111,47 @@ function dots(page: Page, { x, y, width, height }: Box): void {
   page.fill();
 }
 
-/** A place inside the largest part: the middle of the widest stretch at the height of its centre. */
-function spotFor(shape: MultiPolygonXY): XY {
+interface Spot {
+  /** On paper. */
+  readonly at: [number, number];
+  /** Half of the stretch that it is the middle of. */
+  readonly room: number;
+}
+
+/** Numbers lie this far apart if they can, so that the ring of one does not cover another. */
+const NUMBER_RADIUS = 9;
+const HEIGHTS = 25;
+
+/** A place for each number: where its zone has room and no other number is near; zones with least room choose first. */
+export function numberSpots(zones: readonly { number: number; shape: MultiPolygonXY }[], toPaper: ToPaper): { number: number; at: [number, number] }[] {
+  const choices = zones.map(({ number, shape }) => ({ number, spots: spotsIn(shape, toPaper) })).sort((a, b) => widest(a.spots) - widest(b.spots));
+  const placed: { number: number; at: [number, number] }[] = [];
+  for (const { number, spots } of choices) {
+    const apart = ({ at }: Spot) => Math.min(...placed.map((other) => Math.hypot(at[0] - other.at[0], at[1] - other.at[1])), 3 * NUMBER_RADIUS);
+    const worth = (spot: Spot) => Math.min(spot.room, 1.5 * NUMBER_RADIUS) + apart(spot);
+    placed.push({ number, at: spots.reduce((best, spot) => (worth(spot) > worth(best) ? spot : best)).at });
+  }
+  return placed;
+}
+
+function widest(spots: readonly Spot[]): number {
+  return Math.max(...spots.map(({ room }) => room));
+}
+
+/** Middles of the stretches of the largest part at several heights, that of its centre first. */
+function spotsIn(shape: MultiPolygonXY, toPaper: ToPaper): Spot[] {
   const largest = shape.reduce((best, polygon) => (polygonsArea([polygon]) > polygonsArea([best]) ? polygon : best));
-  const [, y] = polygonsCentroid([largest]);
-  const crossings = largest.flatMap((ring) => crossingsAt(ring, y)).sort((a, b) => a - b);
-  let best: [number, number] = [crossings[0] ?? largest[0]![0]![0], crossings[1] ?? largest[0]![0]![0]];
-  for (let at = 0; at + 1 < crossings.length; at += 2) if (crossings[at + 1]! - crossings[at]! > best[1] - best[0]) best = [crossings[at]!, crossings[at + 1]!];
-  return [(best[0] + best[1]) / 2, y];
+  const [, south, , north] = boundsOf(largest);
+  const heights = [polygonsCentroid([largest])[1], ...Array.from({ length: HEIGHTS }, (_, i) => south + ((i + 0.5) / HEIGHTS) * (north - south))];
+  const spots = heights.flatMap((y) => {
+    const crossings = largest.flatMap((ring) => crossingsAt(ring, y)).sort((a, b) => a - b);
+    return crossings.flatMap((from, i): Spot[] => {
+      if (i % 2 === 1 || i + 1 === crossings.length) return [];
+      const [left, right] = [toPaper([from, y]), toPaper([crossings[i + 1]!, y])];
+      return [{ at: [(left[0] + right[0]) / 2, left[1]], room: (right[0] - left[0]) / 2 }];
+    });
+  });
+  return spots.length > 0 ? spots : [{ at: toPaper(largest[0]![0]!), room: 0 }];
 }
 
 function crossingsAt(ring: RingXY, y: number): number[] {

@@ -5,8 +5,10 @@ import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
 import type { ReportLayer, ZoneReport } from './zoneReport.ts';
 
-/** So that a block of two zones and two layers fills one page. */
-const mapHeights = { A4: 270, Letter: 215 };
+/** So that a block of two zones and two layers fills one page; more lines in the tables take their room from the map, down to the least. */
+const mapHeights = { A4: 235, Letter: 180 };
+const leastMapHeight = 150;
+const lineHeight = 17;
 const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
 
 /** The report of a zoning as PDF, for people without the program: verdict, map with marks that print in grey, zones, layers, limits. */
@@ -21,7 +23,8 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(printable(verdict));
   page.moveDown(0.4);
   const mapTop = page.y;
-  const mapHeight = mapHeights[report.size];
+  const lines = Math.max(0, report.zones.length - 2) + Math.max(0, report.layers.length - 2);
+  const mapHeight = Math.max(leastMapHeight, mapHeights[report.size] - lines * lineHeight);
   drawMap(page, report, { x: margin, y: mapTop, width: innerWidth(page), height: mapHeight });
   page.x = margin;
   page.y = mapTop + mapHeight + 6;
@@ -31,6 +34,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
     paragraph(page, [...reasonsOf(report, words.texts), ...differencesOf(report, words)].join(' '));
   }
   layerTable(page, report, words);
+  method(page, report, words);
   limits(page, report, words);
   footers(page, report, words);
   return closePage(page);
@@ -41,14 +45,17 @@ interface Words {
   figure: (value: number, decimals: number) => string;
   day: (at: Date) => string;
   length: (metres: number, decimals: number) => string;
+  /** The smallest patch with its unit. */
+  patch: string;
 }
 
-function wordsOf({ language, units, timeZone }: ZoneReport): Words {
+function wordsOf({ language, units, timeZone, smallestPatchHa }: ZoneReport): Words {
   const figure = (value: number, decimals: number) => new Intl.NumberFormat(language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
   return {
     texts: reportTexts[language],
     figure,
     day: (at) => new Intl.DateTimeFormat(language, { dateStyle: 'long', timeZone }).format(at),
+    patch: `${figure((smallestPatchHa * 10_000) / squareMetres[units].each, 2)} ${squareMetres[units].unit}`,
     length: (metres, decimals) => (units === 'us' ? `${figure(metres / 0.3048, decimals)} ft` : `${figure(metres, decimals)} m`),
   };
 }
@@ -130,6 +137,12 @@ function layerTable(page: Page, report: ZoneReport, { texts, figure, day }: Word
   for (const layer of report.layers) if (layer.override) paragraph(page, filled(texts.override as string, { layer: layer.name, ...layer.override }));
 }
 
+function method(page: Page, report: ZoneReport, { texts, length, patch }: Words): void {
+  keepRoom(page, 70);
+  heading(page, texts.how as string);
+  paragraph(page, filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch }));
+}
+
 function limits(page: Page, report: ZoneReport, { texts, length }: Words): void {
   keepRoom(page, 70);
   heading(page, texts.limits as string);
@@ -138,9 +151,8 @@ function limits(page: Page, report: ZoneReport, { texts, length }: Words): void 
 }
 
 /** The same foot on every page, written when the number of pages is known. */
-function footers(page: Page, report: ZoneReport, { texts, figure, day, length }: Words): void {
-  const { unit, each } = squareMetres[report.units];
-  const text = filled(texts.footer as string, { today: day(report.today), engine: report.engineVersion, seed: report.seed, smoothing: length(report.smoothingM, 1), patch: `${figure((report.smallestPatchHa * 10_000) / each, 2)} ${unit}` });
+function footers(page: Page, report: ZoneReport, { texts, day, length, patch }: Words): void {
+  const text = filled(texts.footer as string, { today: day(report.today), engine: report.engineVersion, seed: report.seed, smoothing: length(report.smoothingM, 1), patch });
   const { start, count } = page.bufferedPageRange();
   for (let at = start; at < start + count; at++) {
     page.switchToPage(at);

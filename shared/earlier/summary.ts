@@ -17,6 +17,7 @@ export interface SummaryFacts {
 export function summariseEarlier(understood: Pick<UnderstoodEarlier, 'lines' | 'refused'>, entries: readonly EarlierEntry[], facts: SummaryFacts): EarlierSummary {
   const nameOf = new Map(facts.blocks.map(({ id, name }) => [id, name]));
   const days = [...new Set(entries.map(({ day }) => day))].sort();
+  const inOrder = [...entries].sort((a, b) => a.line - b.line);
   const step = Math.max(1, Math.floor(entries.length / shownExamples));
   const held = (span: SeasonSpan) => entries.filter(({ day }) => span.startsOn <= day && day <= span.endsOn).length;
   return {
@@ -34,6 +35,6 @@ export function summariseEarlier(understood: Pick<UnderstoodEarlier, 'lines' | '
       .map(({ span, isNew }) => ({ name: span.name, isNew, readings: held(span) }))
       .filter(({ readings }) => readings > 0),
     refusedLines: new Set(understood.refused.map(({ line }) => line)).size,
-    examples: entries.filter((_entry, at) => at % step === 0).slice(0, shownExamples).map(({ line, blockId, rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd }) => ({ line, blockName: nameOf.get(blockId) ?? '', rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd })),
+    examples: inOrder.filter((_entry, at) => at % step === 0).slice(0, shownExamples).map(({ line, blockId, rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd }) => ({ line, blockName: nameOf.get(blockId) ?? '', rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd })),
   };
 }

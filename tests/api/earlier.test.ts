@@ -4,6 +4,7 @@ import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
 import type { EarlierFileView } from '../../shared/contracts/earlier.ts';
 import type { PlanBasis } from '../../shared/contracts/plans.ts';
+import type { ResultsView } from '../../shared/contracts/results.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 import { startFiles, type Files } from './support/withFiles.ts';
@@ -65,6 +66,8 @@ describe('a table of readings of earlier visits', () => {
     const basis = (await agronomist.get(`/api/estates/${estate.estateId}/zonings/${block.zoningId}/plan-basis`)).body as PlanBasis;
     const spreads = basis.measures.find(({ code }) => code === 'brix')!.spreads;
     expect(spreads.map(({ source, n, seasons: years }) => [source, n, years])).toEqual(Array(3).fill(['zone', 20, [2023, 2024]]));
+    const results = (await agronomist.get(`/api/estates/${estate.estateId}/zonings/${block.zoningId}/results?season=${seasons[1]!.id}`)).body as ResultsView;
+    expect(results.visits.map(({ on, seasonId }) => [on, seasonId])).toEqual([['2024-09-04', seasons[1]!.id]]);
     const deed = await AuditEntry.query().findOne({ estateId: estate.estateId, action: 'earlier.store', subjectId: file.id });
     expect(deed!.after).toMatchObject({ readings: 120, seasons: ['2023', '2024'] });
     // The season in force is still the present one.

@@ -48,7 +48,7 @@ export function understandEarlier(file: RawLabFile, around: EarlierSurroundings,
     else usable.add(line);
   }
   const read = readValues(values.filter(({ line }) => usable.has(line)), {
-    measures: around.measures, labels: new Map([...usable].map((line) => [line, String(line)])), dates: new Map(), temperatureColumn: loose.temperatureColumn,
+    measures: around.measures, labels: new Map([...usable].map((line) => [line, String(line)])), dates: new Map(), temperatureColumn: loose.temperatureColumn, isFahrenheit: loose.isFahrenheit,
     settle: ({ code, line, title, text, canKeep }: DoubtfulCell) => {
       if (canKeep) return 'keep';
       refused.push({ line, code, params: { title, text: text.slice(0, 40) } });

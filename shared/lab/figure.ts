@@ -13,6 +13,9 @@ export type Figure =
 const nothing = /^(?:-+|–|—|n\.?\s?\/?\s?a\.?|n\.?\s?d\.?|n\.?\s?r\.?|s\.?\s?d\.?|null|none|nan|#n\/?[ad]!?|#div\/0!|#value!|#ref!|#[¡\w/!?]+|tr\.?|traces?|pending|en cours|in corso|em curso|en curso|< ?(?:lod|loq|ld|lq|dl|mdl))$/i;
 const shape = /^(?<sign>[<≤>≥~≈=]*)\s*(?<figure>[+-]?\d[\d.,\s'’]*|[+-]?[.,]\d+)(?:\s*(?:±|\+\/-|\+-)\s*[\d.,]+)?\s*(?<exponent>e[+-]?\d+)?\s*(?<unit>[^\d<>±]*[^<>±]{0,12})?$/iu;
 
+/** Figures that belong to units: H2SO4, g/100 mL, a hundred berries, powers, reference temperatures. */
+const figuresOfUnits = /h2so4|c4h6o6|h2t|100 ?(?:ml|g|b\w*)|(?:l|m|dm|cm)\s?\^?[-⁻]?[13]\b|20 ?\/ ?20|(?:@|at|à|a|bei) ?20|20 ?°c/giu;
+
 /** Reads one cell. `mark` decides about "1,234"; without it such a cell is ambiguous. */
 export function readFigure(text: string, mark: DecimalMark | null): Figure {
   const plain = text.trim().replace(/\u2212/g, '-').replace(/^["']+|["']+$/g, '').trim();
@@ -22,6 +25,8 @@ export function readFigure(text: string, mark: DecimalMark | null): Figure {
   const below = /^[<≤]/.test(parts.sign ?? '');
   if (/[>≥]/.test(parts.sign ?? '')) return { kind: 'unreadable' };
   const power = parts.exponent ? 10 ** Number(parts.exponent.slice(1)) : 1;
+  // A second figure in the cell ("23.4-23.8", "2.1 (1:2)") is not left out silently.
+  if (/\d/.test((parts.unit ?? '').replace(figuresOfUnits, ''))) return { kind: 'unreadable' };
   const read = readNumberText(parts.figure!.replace(/[\s'’]+$/, ''), mark);
   if (read === null) return { kind: 'unreadable' };
   if (read.length === 2) return { kind: 'ambiguous', asDecimal: read[0] * power, asThousands: read[1] * power, below };

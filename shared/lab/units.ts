@@ -24,6 +24,7 @@ export const labUnits: readonly LabUnit[] = [
   { id: 'gravity', measure: 'brix', shown: 'SG', convert: (value) => brixOfGravity(value > 900 ? value / 1000 : value) },
   { id: 'solidsGPerL', measure: 'brix', shown: 'g/L', convert: brixOfSolids },
   { id: 'tartaricGPerL', measure: 'ta', shown: 'g/L', convert: same },
+  { id: 'tartaricGPer100mL', measure: 'ta', shown: 'g/100 mL', convert: (value) => value * 10 },
   { id: 'sulphuricGPerL', measure: 'ta', shown: 'g/L H2SO4', convert: (value) => convertAcidity(value, 'sulphuricGPerL', 'tartaricGPerL') },
   { id: 'meqPerL', measure: 'ta', shown: 'meq/L', convert: (value) => convertAcidity(value, 'meqPerL', 'tartaricGPerL') },
   { id: 'mmolPerL', measure: 'ta', shown: 'mmol/L', convert: (value) => convertAcidity(value, 'mmolPerL', 'tartaricGPerL') },

@@ -1,4 +1,4 @@
-import { readLabelCode } from '../../field/labelCode.ts';
+import { LABEL_LETTERS, readLabelCode } from '../../field/labelCode.ts';
 import type { RawCell } from './labFile.ts';
 
 /** A cell's text as a person sees it. */
@@ -12,12 +12,20 @@ export function isBlank(cell: RawCell | undefined): boolean {
   return cellText(cell) === '';
 }
 
-/** The label in a cell, or null. */
+/**
+ * The label in a cell, or null: alone, behind the apostrophe that spreadsheets take for text, or with words of the lab's own
+ * beside it ("Furrow 2, TRK WMH") when there is exactly one that its check letter proves.
+ */
 export function labelIn(cell: RawCell | undefined): string | null {
   if (typeof cell !== 'string') return null;
-  const read = readLabelCode(cell);
-  return 'code' in read ? read.code : null;
+  const text = cell.trim().replace(/^['’`"]+|['’`"]+$/g, '');
+  const read = readLabelCode(text);
+  if ('code' in read) return read.code;
+  const within = [...text.toUpperCase().matchAll(groups)].map(([group]) => readLabelCode(group)).flatMap((each) => ('code' in each ? [each.code] : []));
+  return within.length === 1 ? within[0]! : null;
 }
+
+const groups = new RegExp(`(?<![A-Z0-9])[${LABEL_LETTERS}]{3}[ -]?[${LABEL_LETTERS}]{3}(?![A-Z0-9])`, 'gu');
 
 /** Text to compare titles by: small letters, no accents, single blanks. */
 export function plainText(text: string): string {

@@ -6,7 +6,8 @@ import type { LabMeasure, RawCell } from './labFile.ts';
 import { isPlausible } from './plausible.ts';
 import type { Asking } from './questions.ts';
 import { mendTitles } from './shifts.ts';
-import { roleOfTitle, unitOfWord } from './titles.ts';
+import { mendSwap } from './swaps.ts';
+import { isFahrenheit, roleOfTitle, unitOfWord } from './titles.ts';
 
 /** A measured cell before its number is read. */
 export interface LooseValue {
@@ -25,16 +26,19 @@ export interface LooseTable {
   /** Columns of the whole table; null where there is none. */
   readonly dateColumn: number | null;
   readonly temperatureColumn: number | null;
+  /** Degrees Fahrenheit, by the column's title. */
+  readonly isFahrenheit: boolean;
 }
 
 const mostly = 0.7;
 
 /** Which columns hold what, asked where neither title nor figures tell; a file with one result a line is read by its words. */
 export function looseValues(found: LabTable, measures: readonly LabMeasure[], asking: Asking): LooseTable {
-  const table = mendTitles(found, measures, asking);
+  const table = mendSwap(mendTitles(found, measures, asking), measures, asking);
   const roles = table.titles.map((title) => roleOfTitle(title, measures));
   const at = (kind: string) => roles.findIndex((role, column) => role.kind === kind && column !== table.codeColumn);
-  const parts = { dateColumn: at('date') < 0 ? null : at('date'), temperatureColumn: at('temperature') < 0 ? null : at('temperature') };
+  const temperatureColumn = at('temperature') < 0 ? null : at('temperature');
+  const parts = { dateColumn: at('date') < 0 ? null : at('date'), temperatureColumn, isFahrenheit: temperatureColumn !== null && isFahrenheit(table.titles[temperatureColumn] ?? '') };
   const wordColumn = longColumn(table, measures);
   if (wordColumn !== null) return { ...parts, ...readLong(table, { measures, wordColumn, asking }) };
   const values: LooseValue[] = [];

@@ -6,18 +6,20 @@ import type { LooseValue } from './columns.ts';
 import type { LabEntry, LabMeasure, RawCell } from './labFile.ts';
 import { inOwnUnit, isPlausible, isUsual } from './plausible.ts';
 import type { Asking } from './questions.ts';
+import { unitInCell } from './titles.ts';
 
 interface Reading {
   readonly measures: readonly LabMeasure[];
   readonly labels: ReadonlyMap<number, string>;
   readonly dates: ReadonlyMap<number, string>;
   readonly temperatureColumn: number | null;
+  readonly isFahrenheit: boolean;
   /** What becomes of a cell that is no figure, or far from any usual one; asked where nothing is said here. */
   readonly settle?: (cell: DoubtfulCell) => 'keep' | 'leaveOut';
 }
 
 export interface DoubtfulCell {
-  readonly code: 'cellOdd' | 'cellDate' | 'cellUnread';
+  readonly code: 'cellOdd' | 'cellDate' | 'cellUnread' | 'uncorrected';
   readonly line: number;
   readonly title: string;
   readonly text: string;
@@ -29,14 +31,21 @@ export function readValues(values: readonly LooseValue[], reading: Reading, aski
   const mark = decimalMark(values, reading.measures, asking);
   const compensates = reading.temperatureColumn === null || !values.some(({ measure, unit }) => measure === 'brix' && unit === 'brix') ? 'none' : asking.ask('compensates', { code: 'compensates', choices: ['yes', 'no'] });
   const entries: LabEntry[] = [];
-  for (const value of values) {
-    const code = reading.labels.get(value.line);
-    const figure = code === undefined ? null : figureOf(value, { mark, reading, asking });
-    if (code === undefined || figure === null) continue;
+  for (const loose of values) {
+    const code = reading.labels.get(loose.line);
+    const figure = code === undefined ? null : figureOf(loose, { mark, reading, asking });
+    const unit = figure === null ? null : unitOfCell(loose, figure.unit, { reading, asking });
+    if (code === undefined || figure === null || unit === null) continue;
+    const value = { ...loose, unit };
     const measure = reading.measures.find((each) => each.code === value.measure)!;
     let own = inOwnUnit(value.unit, figure.value);
-    const temperature = temperatureOf(value, reading.temperatureColumn, mark);
+    const temperature = temperatureOf(value, reading, mark);
     let corrected = false;
+    if (compensates === 'no' && value.unit === 'brix' && temperature === null) {
+      // Never silently uncorrected where the others of the file are corrected.
+      const answer = settled({ code: 'uncorrected', line: value.line, title: value.title, text: cellText(value.cell), canKeep: true }, reading, asking);
+      if (answer !== 'keep') continue;
+    }
     if (compensates === 'no' && value.unit === 'brix' && temperature !== null) {
       const answer = correctRefractometer({ brix: own, temperatureC: temperature, compensates: false });
       if (answer.kind === 'corrected') {
@@ -86,16 +95,16 @@ function onlyPossible({ cell, measure, unit }: LooseValue, measures: readonly La
   return own.size === 1 ? possible[0]! : null;
 }
 
-function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalMark | null; reading: Reading; asking: Asking }): { value: number; below: boolean } | null {
+function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalMark | null; reading: Reading; asking: Asking }): { value: number; below: boolean; unit: string } | null {
   const { cell, line, title } = value;
-  if (typeof cell === 'number') return { value: cell, below: false };
+  if (typeof cell === 'number') return { value: cell, below: false, unit: '' };
   if (typeof cell === 'object' && cell !== null) {
     settled({ code: 'cellDate', line, title, text: cell.date, canKeep: false }, reading, asking);
     return null;
   }
   const text = cellText(cell);
   const possible = onlyPossible(value, reading.measures);
-  if (possible !== null) return { value: possible, below: /^[<≤]/.test(text) };
+  if (possible !== null) return { value: possible, below: /^[<≤]/.test(text), unit: '' };
   const figure = readFigure(text, mark);
   if (figure.kind === 'number') return figure;
   // Until the mark is told the question about it stands; nothing more is asked of the cell.
@@ -104,10 +113,22 @@ function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalM
   return null;
 }
 
-function temperatureOf({ rowCells }: LooseValue, column: number | null, mark: DecimalMark | null): number | null {
-  const cell: RawCell = column === null ? null : (rowCells[column] ?? null);
+/** The column's unit, or the cell's own where it names another one and somebody says so; null while that is open, or left out. */
+function unitOfCell({ line, title, cell, measure, unit }: LooseValue, written: string, { reading, asking }: { reading: Reading; asking: Asking }): string | null {
+  const own = unitInCell(written, measure);
+  if (own === null || own === unit) return unit;
+  if (reading.settle) return reading.settle({ code: 'cellUnread', line, title, text: cellText(cell), canKeep: false }) === 'keep' ? unit : null;
+  const answer = asking.ask(`cellUnit:${line}:${title}`, { code: 'cellUnit', params: { line, title, text: cellText(cell) }, choices: [own, unit, 'leaveOut'] });
+  return answer === 'leaveOut' ? null : answer;
+}
+
+/** In °C; null where there is none, or none that juice has. */
+function temperatureOf({ rowCells }: LooseValue, { temperatureColumn, isFahrenheit }: Reading, mark: DecimalMark | null): number | null {
+  const cell: RawCell = temperatureColumn === null ? null : (rowCells[temperatureColumn] ?? null);
   const figure = readFigure(cellText(cell), mark);
-  return figure.kind === 'number' && figure.value > -5 && figure.value < 60 ? figure.value : null;
+  if (figure.kind !== 'number') return null;
+  const celsius = isFahrenheit ? Number((((figure.value - 32) * 5) / 9).toFixed(1)) : figure.value;
+  return celsius > -5 && celsius < 45 ? celsius : null;
 }
 
 function sayOnce({ title, measure }: LooseValue, read: { shown: string; read: number; unit: string; unitTyped: string; below: boolean }, asking: Asking): void {

@@ -42,7 +42,8 @@ export function mendTitles(table: LabTable, measures: readonly LabMeasure[], ask
 
 const stepWord = (by: number) => (by > 0 ? 'next' : 'before');
 
-function roughNumber(cell: RawCell | undefined): number {
+/** A cell's number whatever its decimal mark is; NaN for none. */
+export function roughNumber(cell: RawCell | undefined): number {
   const figure = readFigure(cellText(cell), null);
   return figure.kind === 'number' ? figure.value : figure.kind === 'ambiguous' ? figure.asDecimal : Number.NaN;
 }

@@ -41,6 +41,7 @@ const rows: readonly TitleRow[] = [
   { pattern: /sulph|sulf|solfor|h2so4/, role: () => of('ta', 'sulphuricGPerL') },
   { pattern: /m(illi)?eq/, role: () => of('ta', 'meqPerL') },
   { pattern: /mmol/, role: () => of('ta', 'mmolPerL') },
+  { pattern: /(tartar|tartri|weins|h2t|acid|saure|\bta\b|\bat\b).*(g ?\/ ?(100 ?ml|dl)\b)/, role: () => of('ta', 'tartaricGPer100mL') },
   { pattern: /tartar|tartri|weins|h2t|c4h6o6/, role: () => of('ta', 'tartaricGPerL') },
   { pattern: /acid|acidez|saure|\bta\b|\bat\b|\batt\b|\bact\b/, role: () => of('ta', null) },
   { pattern: /\bdate|fecha|\bdata\b|datum|\bdia\b|\bjour\b/, role: () => ({ kind: 'date' }) },
@@ -52,7 +53,7 @@ const rows: readonly TitleRow[] = [
   { pattern: /\brot\b|botryt|pourrit|podred|podrid|marciume/, role: () => of('rotShare', null) },
   { pattern: either(berry, weight), role: (title) => of('berryWeight', /100/.test(title) ? 'gPer100Berries' : 'gPerBerry') },
   { pattern: /\b(year|vintage|season|annee|millesime|ano|anada|anno|annata|safra|campana|time|heure|hora|ora|zon[ea]s?|altitud\w*|elevation|hdop|accuracy|weather)\b/, role: () => ignored },
-  { pattern: /temp|^t ?°|°c\b/, role: () => ({ kind: 'temperature' }) },
+  { pattern: /temp|^t ?°|°[cf]\b|fahrenheit/, role: () => ({ kind: 'temperature' }) },
   { pattern: /label|etiq|etich|bag\b|sample|echant|muestra|campion|amostra|probe|code|codigo|codice|\bref|\bid\b|\bno\b|\bn°/, role: () => ({ kind: 'code' }) },
   { pattern: /^(unit|unite|unidad|unita|unidade|einheit)s?$/, role: () => ({ kind: 'unit' }) },
   { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert)s?e?$/, role: () => ({ kind: 'value' }) },
@@ -66,6 +67,19 @@ export function roleOfTitle(title: string, measures: readonly LabMeasure[]): Col
   if (own) return of(own.code, null);
   const found = rows.find(({ pattern }) => pattern.test(plain))?.role(plain) ?? { kind: 'unknown' };
   return found.kind === 'measure' && !measures.some(({ code }) => code === found.measure) ? ignored : found;
+}
+
+/** A title that says that its temperatures are in degrees Fahrenheit. */
+export function isFahrenheit(title: string): boolean {
+  return /° ?f\b|\bf\b|fahrenheit/.test(plainText(title));
+}
+
+/** The unit written beside a figure, where it says more than the usual "g/L": "4,5 g/L H2SO4" → sulphuric. Null where it does not tell. */
+export function unitInCell(word: string, measure: string): string | null {
+  if (word.trim() === '') return null;
+  const told = unitOfWord(word, measure);
+  if (told !== null || !/\bm?g ?\/ ?l\b/.test(plainText(word)) || !['malic', 'yan'].includes(measure)) return told;
+  return unitOfWord(`${measure} ${word}`, measure);
 }
 
 /** Unit words that stand alone, in a row of units or a column of units. */

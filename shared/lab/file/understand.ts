@@ -40,7 +40,7 @@ function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { 
   const dates = readDates(new Map(loose.dateColumn === null ? [] : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null])), { earliest: earliestClosing(around, labels), today: around.today }, asking);
   if (loose.values.length === 0 && asking.questions.length === 0) asking.say('noResults');
   if (values === null) return { list: [], titles: table.titles };
-  return { list: readValues(values, { measures: around.measures, labels, dates, temperatureColumn: loose.temperatureColumn }, asking), titles: table.titles };
+  return { list: readValues(values, { measures: around.measures, labels, dates, temperatureColumn: loose.temperatureColumn, isFahrenheit: loose.isFahrenheit }, asking), titles: table.titles };
 }
 
 function earliestClosing({ labels }: LabSurroundings, lines: ReadonlyMap<number, string>): string | null {

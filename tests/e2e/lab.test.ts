@@ -66,6 +66,18 @@ describe('a day at the lab', () => {
     await expectAccessible();
   });
 
+  it('what nobody has checked stays out of ripeness, which says so and shows it when asked', async () => {
+    const { bags, results } = await bench();
+    const malic = results.find(({ measureCode }) => measureCode === 'malic')!;
+    const { blockId } = bags.find(({ id }) => id === malic.bagId)!;
+    await page.goto(`${app.url}/e/${estateId}/blocks/${blockId}/ripeness`);
+    await page.getByText(/figures of the lab are not checked yet and stay out here/).waitFor();
+    expect(await page.getByText('Malic acid').count()).toBe(0);
+    await page.getByRole('button', { name: 'Show with them' }).click();
+    await page.getByText('Malic acid').first().waitFor();
+    await page.goto(`${app.url}/e/${estateId}/lab`);
+  });
+
   it('an ugly workbook is asked about, and stored only then', async () => {
     const here = (await bench()).bags.filter(({ place, results }) => place === 'here' && results === 0);
     const [one, two] = here as [(typeof here)[0], (typeof here)[0]];

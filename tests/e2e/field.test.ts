@@ -85,6 +85,13 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.setGeolocation({ longitude: lon + 0.01, latitude: lat, accuracy: 12 });
     await page.getByText(/Your place, roughly: \d+ m or more from this row/).waitFor();
     expect(await page.locator('circle.fog').count()).toBe(0);
+    await context.setGeolocation({ longitude: lon, latitude: lat, accuracy: 3 });
+    await page.getByRole('button', { name: 'The block from above' }).tap();
+    await page.locator('.plan circle.fog').first().waitFor();
+    expect(Number(await page.locator('.plan > svg circle.fog').getAttribute('r'))).toBeGreaterThanOrEqual(30);
+    expect(await page.locator('.plan > svg circle:not(.fog)').count()).toBe(round.stops.length);
+    await page.getByRole('button', { name: 'Back to the vine' }).tap();
+    await context.setGeolocation({ longitude: lon + 0.01, latitude: lat, accuracy: 12 });
     await page.reload();
     await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
     const [east, kept] = [String(lon + 0.01).slice(0, 8), await page.evaluate(() => JSON.stringify(localStorage))];
@@ -189,6 +196,38 @@ describe('a day of three phones without signal, one of which is lost', () => {
     }
     await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
     await page.getByText('1 of them is a bag or a photo.').waitFor();
+  });
+
+  it('where the browser reads codes the camera fills the label in and is switched off; without a camera it says so', async () => {
+    const context = await app.browser.newContext({ locale: 'en-GB', viewport: { width: 390, height: 844 }, hasTouch: true, storageState: await phones[0]!.context.storageState(), serviceWorkers: 'block' });
+    const page = await context.newPage();
+    await page.addInitScript(() => {
+      // A reader of codes as some browsers have it; it finds the label once it is shown a moving picture.
+      (globalThis as { BarcodeDetector?: unknown }).BarcodeDetector = class {
+        detect(video: HTMLVideoElement): Promise<{ rawValue: string }[]> {
+          return Promise.resolve(video.videoWidth > 0 ? [{ rawValue: 'https://elsewhere.example/NOTOURS' }, { rawValue: 'BBBBDP' }] : []);
+        }
+      };
+    });
+    await page.goto(phones[0]!.page.url().replace(/\/field.*/, `/field/rounds/${roundId}/bag`));
+    await page.getByRole('button', { name: 'Scan the label' }).tap();
+    await page.getByText('This phone gives no camera. Type the six letters.').waitFor();
+    await page.evaluate(() => {
+      navigator.mediaDevices.getUserMedia = () => {
+        const canvas = document.createElement('canvas');
+        const paint = canvas.getContext('2d')!;
+        setInterval(() => paint.fillRect(0, 0, Math.random() * 300, 150), 40);
+        const stream = canvas.captureStream(25);
+        (globalThis as { camera?: MediaStream }).camera = stream;
+        return Promise.resolve(stream);
+      };
+    });
+    await page.getByRole('button', { name: 'Scan the label' }).tap();
+    await page.getByText('The label reads right.').waitFor();
+    expect(await page.getByLabel('Label, six letters').inputValue()).toBe('BBB BDP');
+    expect(await page.evaluate(() => (globalThis as { camera?: MediaStream }).camera!.getTracks().map(({ readyState }) => readyState))).toEqual(['ended']);
+    expect(await page.getByText('This phone gives no camera').count()).toBe(0);
+    await context.close();
   });
 
   it('Ben walks his vines and, without knowing it, three of Ana’s', async () => {

@@ -10,9 +10,18 @@ const detectorClass = (globalThis as { BarcodeDetector?: DetectorClass }).Barcod
 
 export const canScan = detectorClass !== undefined && typeof navigator !== 'undefined' && 'mediaDevices' in navigator;
 
-/** Looks through the camera until `read` takes what it saw. `isOn` tells whether the camera runs; a refused camera just stays off. */
-export function useLabelScan(video: Ref<HTMLVideoElement | null>, read: (text: string) => boolean): { isOn: Ref<boolean>; start: () => Promise<void>; stop: () => void } {
+export interface LabelScan {
+  isOn: Ref<boolean>;
+  /** The camera was asked for and not given: no camera, or not allowed. The letters are typed then. */
+  isRefused: Ref<boolean>;
+  start: () => Promise<void>;
+  stop: () => void;
+}
+
+/** Looks through the camera until `read` takes what it saw. */
+export function useLabelScan(video: Ref<HTMLVideoElement | null>, read: (text: string) => boolean): LabelScan {
   const isOn = ref(false);
+  const isRefused = ref(false);
   let stream: MediaStream | null = null;
 
   function stop(): void {
@@ -24,6 +33,8 @@ export function useLabelScan(video: Ref<HTMLVideoElement | null>, read: (text: s
   async function start(): Promise<void> {
     if (!detectorClass) return;
     stream = await navigator.mediaDevices.getUserMedia({ video: { facingMode: 'environment' } }).catch(() => null);
+    isRefused.value = stream === null;
+    // The screen may have been left while the browser asked.
     if (!stream || !video.value) return stop();
     isOn.value = true;
     video.value.srcObject = stream;
@@ -37,5 +48,5 @@ export function useLabelScan(video: Ref<HTMLVideoElement | null>, read: (text: s
   }
 
   onBeforeUnmount(stop);
-  return { isOn, start, stop };
+  return { isOn, isRefused, start, stop };
 }

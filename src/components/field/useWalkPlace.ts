@@ -13,6 +13,8 @@ export interface WalkPlace {
   previous: ComputedRef<StopVine | null>;
   measure: ComputedRef<FieldMeasure | null>;
   done: ComputedRef<number>;
+  /** Targets at which nothing is left to read. */
+  read: ComputedRef<ReadonlySet<string>>;
   /** How far the zone is, with what was read here and what the server had. */
   standing: ComputedRef<ZoneStanding | null>;
 }
@@ -37,14 +39,15 @@ export function useWalkPlace(round: Ref<FieldRound | null>, entries: () => reado
     const code = correcting.value?.reading?.measureCode;
     return code ? (round.value.measures.find((one) => one.code === code) ?? null) : (openAt(round.value, stop.value, typed.value)[0] ?? null);
   });
-  const done = computed(() => (round.value ? round.value.stops.filter((one) => isStopDone(round.value!, one, typed.value)).length : 0));
+  const read = computed(() => new Set(round.value?.stops.filter((one) => isStopDone(round.value!, one, typed.value)).map(({ targetId }) => targetId)));
+  const done = computed(() => read.value.size);
   const standing = computed(() => {
     if (!round.value || !stop.value || !measure.value) return null;
     const received = round.value.received.flatMap(({ targetId, measureCode, value }) => (targetId === null ? [] : [{ targetId, measureCode, value }]));
     const here = entries().flatMap(({ reading }) => (reading?.targetId ? [{ targetId: reading.targetId, measureCode: reading.measureCode, value: reading.value }] : []));
     return standingOf(round.value, measure.value, stop.value.zone, [...received, ...here]);
   });
-  return { openIndex, stop, vine, previous, measure, done, standing };
+  return { openIndex, stop, vine, previous, measure, done, read, standing };
 }
 
 /** Whether an entry belongs to a stop: by its target, or by the vine that was found to be something else. */

@@ -3,7 +3,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { expectAccessible } from './support/accessible.ts';
 import { answer } from './support/answerImport.ts';
 import { startApplication, type Application } from './support/application.ts';
-import { outlineFile } from './support/files.ts';
+import { outlineFile, place } from './support/files.ts';
 import { folder, indexAnswers } from './support/folderOfFiles.ts';
 
 /** A folder with one good picture among ten damaged or doubtful files, brought in by somebody who must know what became of each. */
@@ -89,7 +89,7 @@ describe('a folder of files', () => {
     const { page, close } = await openDesk();
     const line = lineOf(page, folder.withoutReference.name);
     await line.locator('h2 button').click();
-    await line.getByText('UTM zone 31N (EPSG:32631)', { exact: false }).click();
+    await line.getByText(`UTM zone ${place.epsg % 100}${place.epsg < 32_700 ? 'N' : 'S'} (EPSG:${place.epsg})`, { exact: false }).click();
     await line.getByRole('button', { name: /Confirm placing [A-Z]/ }).click();
     await line.getByLabel('What is it?').first().waitFor();
     await answer(page, folder.withoutReference.name, indexAnswers);

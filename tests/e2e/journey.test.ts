@@ -166,11 +166,11 @@ describe('from a vigour image to a pick lot', () => {
     await page.getByText(/Your invitation to Marlhaven/).first().click();
     await page.getByText(/\/join\//).first().waitFor();
     await page.goto(`${app.url}/e/${estateId}/people`);
-    await page.getByText('Lucía Serra', { exact: true }).first().click();
+    await page.locator('.ledger-name', { hasText: 'Lucía Serra' }).click();
     await page.getByLabel('lab', { exact: true }).check();
     await page.getByRole('button', { name: 'Keep these roles' }).click();
     await page.getByText('Roles of Lucía Serra are changed.').waitFor();
-    await page.getByText('Lucía Serra', { exact: true }).first().click();
+    await page.locator('.ledger-name', { hasText: 'Lucía Serra' }).click();
     await page.getByRole('button', { name: 'End access' }).first().click();
     await page.getByRole('dialog').getByRole('button', { name: 'End access' }).click();
     await page.getByText('Lucía Serra has no access any more.').waitFor();

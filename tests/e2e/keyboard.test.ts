@@ -177,7 +177,7 @@ describe('without a mouse', () => {
     await tabTo(maker.page, /^Name$/);
     await maker.page.keyboard.type('By keys');
     await press(maker.page, /^Make the lot$/);
-    await maker.page.getByRole('dialog').waitFor({ state: 'detached' });
+    await maker.page.getByText('By keys', { exact: true }).filter({ visible: true }).first().waitFor();
     // One stop in the table; the arrows go from line to line.
     await tabTo(maker.page, /^Heron Bank/);
     await maker.page.keyboard.press('ArrowDown');

@@ -29,14 +29,20 @@ export const useImportsStore = defineStore('imports', () => {
   const lines = shallowRef<readonly ImportView[]>([]);
   const sending = shallowRef<readonly Sending[]>([]);
   let last = 0;
+  let changes = 0;
   const base = (estateId: string) => `/api/estates/${estateId}/imports`;
 
+  /** Asks again when a line came or went meanwhile: the list on its way does not know of it, and would take it off the screen. */
   async function load(estateId: string): Promise<void> {
-    lines.value = (await http.get<{ items: ImportView[] }>(base(estateId))).items;
+    const before = changes;
+    const { items } = await http.get<{ items: ImportView[] }>(base(estateId));
+    if (changes !== before) return load(estateId);
+    lines.value = items;
   }
 
   /** Puts a line in its place; a new one comes first. */
   function keep(line: ImportView): ImportView {
+    changes += 1;
     const known = lines.value.some((each) => each.id === line.id);
     lines.value = known ? lines.value.map((each) => (each.id === line.id ? line : each)) : [line, ...lines.value];
     return line;
@@ -141,6 +147,7 @@ export const useImportsStore = defineStore('imports', () => {
 
   async function dismiss(estateId: string, importId: string): Promise<void> {
     await http.delete(`${base(estateId)}/${importId}`);
+    changes += 1;
     lines.value = lines.value.filter((each) => each.id !== importId);
   }
 

@@ -4,6 +4,7 @@ import type { z } from 'zod';
 import type { CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
 import type { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { http } from '../lib/http.ts';
+import { inOrder } from '../lib/inOrder.ts';
 
 export interface LotPartChange {
   readonly zoneId: string;
@@ -19,12 +20,14 @@ export const useLotsStore = defineStore('lots', () => {
   const capacities = shallowRef<readonly CapacityView[]>([]);
   const decisions = shallowRef<readonly DecisionView[]>([]);
   let estate = '';
+  const [newestBoard, newestDecisions] = [inOrder(), inOrder()];
   const base = () => `/api/estates/${estate}`;
 
   /** `knownOn`: as all of it stood on that day; empty for now. */
   async function load(estateId: string, scenarioId: string | null = null, knownOn = ''): Promise<void> {
     estate = estateId;
-    board.value = await http.get<LotsBoard>(`${base()}/lots`, { query: { scenario: scenarioId, known: knownOn === '' ? null : knownOn } });
+    const query = { scenario: scenarioId, known: knownOn === '' ? null : knownOn };
+    await newestBoard(() => http.get<LotsBoard>(`${base()}/lots`, { query }), (answer) => (board.value = answer));
   }
 
   const again = () => load(estate, board.value?.scenarioId ?? null);
@@ -102,7 +105,7 @@ export const useLotsStore = defineStore('lots', () => {
   }
 
   async function loadDecisions(lotId: string): Promise<void> {
-    decisions.value = (await http.get<{ items: DecisionView[] }>(`${base()}/lots/${lotId}/decisions`)).items;
+    await newestDecisions(() => http.get<{ items: DecisionView[] }>(`${base()}/lots/${lotId}/decisions`), ({ items }) => (decisions.value = items));
   }
 
   async function addTank(tank: z.input<typeof newTank>): Promise<void> {

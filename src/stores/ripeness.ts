@@ -3,6 +3,7 @@ import { shallowRef } from 'vue';
 import type { BlockLine } from '../../shared/contracts/blocks.ts';
 import type { RipeningView } from '../../shared/contracts/results.ts';
 import { http } from '../lib/http.ts';
+import { inOrder } from '../lib/inOrder.ts';
 
 /** How the blocks of an estate ripen, one block at a time. */
 export const useRipenessStore = defineStore('ripeness', () => {
@@ -15,17 +16,16 @@ export const useRipenessStore = defineStore('ripeness', () => {
     blocks.value = items.filter((block) => block.zoning !== null);
   }
 
-  let asked = 0;
+  const newest = inOrder();
 
   /**
    * `knownOn`: as it stood on that day; empty for now. `unchecked`: whether figures of the lab that nobody has checked
    * count. The block asked for last is the one that is shown, whichever answer comes last.
    */
   async function load(estateId: string, blockId: string, { knownOn = '', unchecked = 'out' }: { knownOn?: string; unchecked?: 'in' | 'out' } = {}): Promise<void> {
-    const mine = ++asked;
     view.value = null;
-    const answer = await http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query: { known: knownOn === '' ? null : knownOn, unchecked: unchecked === 'in' ? 'in' : null } });
-    if (mine === asked) view.value = answer;
+    const query = { known: knownOn === '' ? null : knownOn, unchecked: unchecked === 'in' ? 'in' : null };
+    await newest(() => http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query }), (answer) => (view.value = answer));
   }
 
   return { blocks, view, loadBlocks, load };

@@ -1,16 +1,17 @@
 import { decimalsOf, shownValue, unitOf, type Quantity, type UnitSystem } from './units.ts';
 
-/** How figures and dates are written: thin space for thousands, true minus, thin spaces around ±, unit after a thin space. */
+/** How figures and dates are written: narrow space for thousands, true minus, narrow spaces around ±, unit after a narrow space. */
 export type Language = 'en' | 'es' | 'fr' | 'it' | 'pt';
 
 export interface FormatPreferences {
   readonly language: Language;
   readonly units: UnitSystem;
-  /** IANA zone for times of day; the device's own when missing. */
+  /** IANA zone for times of day, the estate's; the device's own when missing. */
   readonly timeZone?: string;
 }
 
-export const thinSpace = '\u2009';
+/** Narrow and unbreakable: a figure never parts from its unit at the end of a line. */
+export const thinSpace = '\u202F';
 export const minus = '\u2212';
 export const noFigure = '\u2013';
 
@@ -28,7 +29,7 @@ const dateParts: Record<DateStyle, Intl.DateTimeFormatOptions> = {
 
 export type Format = ReturnType<typeof createFormat>;
 
-/** Everything that turns a value into text for one person. `createFormat({language:'fr',units:'metric'}).number(4140.5, 1)` is "4 140,5" with a thin space. */
+/** Everything that turns a value into text for one person. `createFormat({language:'fr',units:'metric'}).number(4140.5, 1)` is "4 140,5" with a narrow space. */
 export function createFormat({ language, units, timeZone }: FormatPreferences) {
   const region = regions[language];
   const number = (value: number, decimals = 0) => numberText(value, decimals, region);

@@ -57,14 +57,14 @@ describe('tanks', () => {
   });
 
   it('never promise that a lot fits, or that it does not', () => {
-    expect(chanceText(1, format)).toBe('> 99\u2009%');
-    expect(chanceText(0, format)).toBe('< 1\u2009%');
+    expect(chanceText(1, format)).toBe('> 99\u202F%');
+    expect(chanceText(0, format)).toBe('< 1\u202F%');
   });
 });
 
 describe('litres', () => {
   it('are told no finer than their range', () => {
-    expect(figureText(figure(34_714, 10_097), { format, quantity: 'volume' })).toBe('35\u2009000\u2009±\u200910\u2009000');
-    expect(figureText(figure(8272, 2604), { format, quantity: 'volume' })).toBe('8\u2009300\u2009±\u20092\u2009600');
+    expect(figureText(figure(34_714, 10_097), { format, quantity: 'volume' })).toBe('35\u202F000\u202F±\u202F10\u202F000');
+    expect(figureText(figure(8272, 2604), { format, quantity: 'volume' })).toBe('8\u202F300\u202F±\u202F2\u202F600');
   });
 });

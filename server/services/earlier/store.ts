@@ -6,9 +6,9 @@ import type { EarlierEntry } from '../../../shared/earlier/earlierTable.ts';
 import { summariseEarlier } from '../../../shared/earlier/summary.ts';
 import { startingPhases } from '../../../shared/season/phases.ts';
 import { missingSeasons } from '../../../shared/season/seasonAround.ts';
+import { instantAt } from '../../../shared/season/wallClock.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
-import { noonIn } from '../../ground/noonIn.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { EarlierFile } from '../../models/EarlierFile.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -81,7 +81,7 @@ async function rowsOf(trx: Transaction, access: Access, entries: readonly Earlie
   // What was taken back stays as it is; the same file sent once more makes readings of its own.
   const takenBack = await EarlierFile.query(trx).where({ estateId, state: 'takenBack' }).whereIn('fileId', StoredFile.query(trx).where({ estateId, sha256 }).select('id')).resultSize();
   const unitOf = new Map(table.around.measures.map(({ code, unit }) => [code, unit]));
-  const noon = new Map([...new Set(entries.map(({ day }) => day))].map((day) => [day, noonIn(table.timeZone, day)]));
+  const noon = new Map([...new Set(entries.map(({ day }) => day))].map((day) => [day, instantAt(table.timeZone, `${day}T12:00`)]));
   return entries.map(({ line, blockId, rowId, ordinal, rowLabel, vineNumber, measure, value, below, typed, unitTyped, day, odd, isRepeat }) => ({
     id: idOf(estateId, sha256, takenBack, line, measure), estateId, seasonId: seasons.find(({ startsOn, endsOn }) => startsOn <= day && day <= endsOn)!.id,
     blockId, rowId, ordinal, measureCode: measure, value, unit: unitOf.get(measure)!, valueTyped: typed, unitTyped, takenAt: noon.get(day)!, receivedAt: now, personId,

@@ -1,11 +1,19 @@
 import { inflateSync } from 'node:zlib';
 
-/** What is written and drawn on each page of a PDF made by pdfkit with its built-in fonts: texts in order, and boxes in points. */
+interface Box {
+  readonly x: number;
+  readonly y: number;
+  readonly width: number;
+  readonly height: number;
+}
+
+/** What is written and drawn on each page of a PDF made by pdfkit with its built-in fonts: texts in order, boxes in points, filled squares in the units they were drawn in. */
 export interface PdfPage {
   readonly width: number;
   readonly height: number;
   readonly texts: readonly string[];
-  readonly boxes: readonly { readonly x: number; readonly y: number; readonly width: number; readonly height: number }[];
+  readonly boxes: readonly Box[];
+  readonly fills: readonly Box[];
 }
 
 export function readPdf(bytes: Buffer): PdfPage[] {
@@ -14,7 +22,7 @@ export function readPdf(bytes: Buffer): PdfPage[] {
   return [...objects.values()].filter((body) => /\/Type \/Page\b/u.test(body)).map((page) => {
     const [, width, height] = /\/MediaBox \[0 0 ([\d.]+) ([\d.]+)\]/u.exec(page)!;
     const content = contentOf(objects.get(/\/Contents (\d+) 0 R/u.exec(page)![1]!)!);
-    return { width: Number(width), height: Number(height), texts: textsOf(content), boxes: boxesOf(content) };
+    return { width: Number(width), height: Number(height), texts: textsOf(content), boxes: boxesOf(content), fills: fillsOf(content) };
   });
 }
 
@@ -34,4 +42,12 @@ function boxesOf(content: string): PdfPage['boxes'] {
     const [x, y, width, height] = found.slice(1).filter((part) => part !== undefined).map(Number);
     return { x: x!, y: y!, width: width!, height: height! };
   });
+}
+
+function fillsOf(content: string): Box[] {
+  const areas = [...content.matchAll(/((?:^-?[\d.]+ -?[\d.]+ [\d.]+ [\d.]+ re\n)+)(?:[^\n]* (?:cs|scn|sc|gs)\n)*f$/gmu)].map(([, boxes]) => boxes!);
+  return areas.flatMap((boxes) => boxes.trim().split('\n').map((line) => {
+    const [x, y, width, height] = line.split(' ').map(Number);
+    return { x: x!, y: y!, width: width!, height: height! };
+  }));
 }

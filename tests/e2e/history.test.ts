@@ -29,6 +29,9 @@ describe('readings of earlier visits', () => {
     const table = `Parcelle;Rang;Cep;Date;Bois de taille (kg)\n${block.name};${first};3;03/02/2019;0,62\n${block.name};${second};4;03/02/2019;0,71\n${block.name};9999;1;03/02/2019;0,70\n`;
     await page.goto(`${app.url}/e/${estateId}/imports`);
     await page.getByRole('link', { name: 'Earlier readings' }).click();
+    // The desk that is left takes files as well.
+    await page.waitForURL(/\/earlier-readings$/);
+    await page.getByRole('heading', { name: 'Readings of earlier visits' }).waitFor();
     await page.locator('input[type=file]').setInputFiles({ name: 'hiver 2019.csv', mimeType: 'text/csv', buffer: Buffer.from(table) });
     await page.getByText('Day before month', { exact: true }).click();
     await page.getByRole('button', { name: 'Confirm answers' }).click();

@@ -20,6 +20,12 @@ const blockTitle = titled('blocks?|blocs?|bloque|blocco|bloco|parcels?|parcelle|
 const rowTitle = titled('rows?|rangs?|rangee|ligne|filas?|hilera|linea|filare|linha|fileira|bardo|carreira|reihe|zeile');
 const vineTitle = titled('vines?|ceps?|souche|pied|plants?|plante|cepas?|planta|vid|vite|ceppo|pianta|videira|pe|rebe|stock');
 
+/** Whether columns with these titles tell vines by row and number, as a list of readings does, and not by position. */
+export function namesRowsAndVines(titles: readonly string[]): boolean {
+  const plain = titles.map(plainText);
+  return plain.some((title) => rowTitle.test(title)) && plain.some((title) => vineTitle.test(title));
+}
+
 /** The columns of the place by their titles, asked where the titles do not tell. Null while that is open. */
 export function placeColumns(table: LabTable, asking: Asking): PlaceColumns | null {
   const plain = table.titles.map(plainText);

@@ -1,3 +1,4 @@
+import { namesRowsAndVines } from '../../../shared/earlier/columns.ts';
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
 import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
@@ -39,8 +40,10 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   const columns = findPositionColumns(table.names, options.answers);
   const base = { kind: 'points' as const, separator: table.separator, decimalMark, encoding, hasHeader: table.hasHeader };
   if (columns === null) {
+    const isReadings = namesRowsAndVines(table.names);
+    if (isReadings) warnings.push({ code: 'rows-and-vines', text: 'It tells vines by row and number: readings of vines come in under "Earlier readings".' });
     const choices = numericColumns(table, decimalMark).map((name) => ({ value: name, label: name }));
-    if (choices.length < 2) throw new ImportProblem({ code: 'no-coordinates', fact: `None of its columns holds positions (it has ${table.names.slice(0, 6).join(', ').slice(0, 120)}).`, remedy: 'Add columns with latitude and longitude, or easting and northing.' });
+    if (choices.length < 2) throw new ImportProblem({ code: 'no-coordinates', fact: `None of its columns holds positions (it has ${table.names.slice(0, 6).join(', ').slice(0, 120)}).`, remedy: isReadings ? 'Readings by row and vine come in under "Earlier readings"; a layer needs columns with latitude and longitude, or easting and northing.' : 'Add columns with latitude and longitude, or easting and northing.' });
     questions.push({ code: 'columns', text: 'Which columns hold longitude (or easting) and latitude (or northing)?', choices });
     return { ...base, columns: describe(table, table.rows), position: null, reference: null, epsg: null, pointsLonLat: [], rowNumbers: [], numbers: new Map(), texts: new Map(), setAside: [], questions, warnings };
   }

@@ -96,3 +96,19 @@ describe('tables', () => {
     expect(points.pointsLonLat[0]![1]).toBeCloseTo(44.7033, 3);
   });
 });
+
+describe('a table that tells vines by row and number', () => {
+  it.each([
+    ['Parcelle;Rang;Cep;Date;Bois de taille (kg)\nClos;1;3;03/02/2019;0,62\n', true],
+    ['Block,Row,Vine,Brix\nOak,12,4,21.5\n', true],
+    ['id,a,b\n1,44.7,3.0\n', false],
+  ])('is pointed to the screen for readings: %s', async (words, isReadings) => {
+    const { warnings, questions } = await read(words);
+    expect(warnings.some(({ code }) => code === 'rows-and-vines')).toBe(isReadings);
+    expect(questions.map(({ code }) => code)).toContain('columns');
+  });
+
+  it('is pointed there too when it has too few numbers for positions', async () => {
+    await expect(read('row,vine,variety\nA,B,Merlot\n')).rejects.toThrow(/Earlier readings/);
+  });
+});

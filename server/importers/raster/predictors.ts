@@ -31,8 +31,32 @@ export function undoDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow,
         : new Uint32Array(bytes.buffer, bytes.byteOffset, count);
   for (let row = 0; row < count; row += samplesPerRow) {
     const end = Math.min(count, row + samplesPerRow);
-    for (let i = row + stride; i < end; i++) samples[i] = samples[i]! + samples[i - stride]!;
+    if (stride === 2) addPairs(samples, row, end);
+    else for (let band = 0; band < stride; band++) addUp(samples, row + band, { end, stride });
   }
+}
+
+/** Running sums wrap at 32 bits, whose lower bits are those of any narrower sample. Kept beside the array they are added much sooner. */
+function addUp(samples: Wrapping, from: number, { end, stride }: { end: number; stride: number }): void {
+  let sum = 0;
+  for (let i = from; i < end; i += stride) {
+    sum = (sum + samples[i]!) | 0;
+    samples[i] = sum;
+  }
+}
+
+/** Two bands, as most pictures with red and near infrared have. */
+function addPairs(samples: Wrapping, from: number, end: number): void {
+  let first = 0;
+  let second = 0;
+  let i = from;
+  for (; i + 1 < end; i += 2) {
+    first = (first + samples[i]!) | 0;
+    second = (second + samples[i + 1]!) | 0;
+    samples[i] = first;
+    samples[i + 1] = second;
+  }
+  if (i < end) samples[i] = first + samples[i]!;
 }
 
 /** Predictor 3: returns native (little-endian) floats; the byte order of the file does not matter. */

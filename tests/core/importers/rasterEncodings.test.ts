@@ -4,6 +4,8 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { decodeLzw } from '../../../server/importers/raster/lzw.ts';
+import { undoDifferences } from '../../../server/importers/raster/predictors.ts';
+import { seededRandom } from '../../../shared/analysis/random.ts';
 import { readPixels } from './readPixels.ts';
 import { writeTiff, type TiffPlan } from './writeTiff.ts';
 
@@ -31,6 +33,21 @@ describe('encodings of one picture give the same numbers', () => {
     const [plain] = await readPixels(fixture('dem.tif'), [1]);
     expect(plain![46 * 104 + 52]).toBe(Math.fround(29.88002586364746));
     expect(differing(await readPixels(fixture(`${name}.tif`), [1]), [plain!])).toBe(0);
+  });
+});
+
+describe('differences taken of whole numbers', () => {
+  it.each([1, 2, 3, 5].flatMap((stride) => ([1, 2, 4, 8] as const).map((bytesPerSample) => [stride, bytesPerSample] as const)))('of %i bands and %i bytes are added up again, cut short or not', (stride, bytesPerSample) => {
+    const random = seededRandom(stride * 10 + bytesPerSample);
+    const samplesPerRow = 23 * stride;
+    const bytes = Uint8Array.from({ length: (samplesPerRow * 7 - 1) * bytesPerSample }, () => Math.floor(random() * 256));
+    const read = (from: Uint8Array) => Array.from({ length: from.length / bytesPerSample }, (_, at) => BigInt(`0x${Buffer.from(from.subarray(at * bytesPerSample, (at + 1) * bytesPerSample)).reverse().toString('hex')}`));
+    const wanted = read(bytes);
+    wanted.forEach((difference, at) => {
+      if (at % samplesPerRow >= stride) wanted[at] = BigInt.asUintN(8 * bytesPerSample, difference + wanted[at - stride]!);
+    });
+    undoDifferences(bytes, { samplesPerRow, stride, bytesPerSample });
+    expect(read(bytes)).toEqual(wanted);
   });
 });
 

@@ -73,6 +73,20 @@ export function pixelsToCells(grid: GridFrame, frame: RasterFrame, window: Pixel
   return toGrid === undefined ? linearMap(inCells) : latticeMap(inCells, window, 0.01);
 }
 
+/** First and last column and row of the cells that a rectangle of pixels may touch, off the grid too. Its sides are followed at 16 places, and a cell is left for bends between them. */
+export function cellsUnder(map: PlaneMap, { firstCol, firstRow, cols, rows }: PixelWindow): { firstCol: number; lastCol: number; firstRow: number; lastRow: number } {
+  const place = new Float64Array(2);
+  let [west, north, east, south] = [Infinity, Infinity, -Infinity, -Infinity];
+  for (const [u, v] of rimOf({ cols, rows })) {
+    map.row({ u: firstCol + u, v: firstRow + v, count: 1 }, place);
+    west = Math.min(west, place[0]!);
+    east = Math.max(east, place[0]!);
+    north = Math.min(north, place[1]!);
+    south = Math.max(south, place[1]!);
+  }
+  return { firstCol: Math.floor(west) - 1, lastCol: Math.floor(east) + 1, firstRow: Math.floor(north) - 1, lastRow: Math.floor(south) + 1 };
+}
+
 /** Map of cell positions to pixel positions over the whole grid. */
 export function cellsToPixels(grid: GridFrame, frame: RasterFrame): PlaneMap {
   const inPixels = pointInPixels(grid, frame);
@@ -101,8 +115,8 @@ export function pointInPixels(grid: GridFrame, { transform, toGrid }: RasterFram
   };
 }
 
-/** Positions along the grid's four sides, close enough together for the bend of a map projection. */
-function rimOf(grid: GridFrame): (readonly [number, number])[] {
+/** Positions along the four sides, close enough together for the bend of a map projection. */
+function rimOf(grid: Pick<GridFrame, 'cols' | 'rows'>): (readonly [number, number])[] {
   const steps = 16;
   return Array.from({ length: steps + 1 }, (_, step) => step / steps).flatMap((part): (readonly [number, number])[] => [
     [part * grid.cols, 0],

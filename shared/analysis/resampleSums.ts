@@ -6,7 +6,7 @@
  * Cost: pixels × bands; memory: cells × (bands + 1) doubles.
  */
 import type { GridFrame } from './grid.ts';
-import { pixelAreaInCells, pixelsPerCell, pixelsToCells, pixelWindow, type PixelWindow, type RasterFrame } from './resampleFrame.ts';
+import { cellsUnder, pixelAreaInCells, pixelsPerCell, pixelsToCells, pixelWindow, type PixelWindow, type RasterFrame } from './resampleFrame.ts';
 import type { PlaneMap } from './resampleMap.ts';
 import { addByCentre, addByCentreTable, centreTables, type CentreTables } from './resampleSumsCentre.ts';
 import { addByQuad } from './resampleSumsQuad.ts';
@@ -19,6 +19,8 @@ export interface SumsOptions {
   readonly noData?: readonly (number | null)[];
   /** auto: by centre from four pixels across a cell on, by area below that. */
   readonly weighting?: 'auto' | 'centre' | 'area';
+  /** Share of each cell that lies in the block; pixels over cells without any need no reading. All cells count when absent. */
+  readonly ground?: ArrayLike<number>;
 }
 
 /** Sums of each band and of the weight, one after the other: band b of a cell is at b · cells + cell, the weight comes last. */
@@ -50,14 +52,30 @@ export class CellSums implements PixelSink {
   private readonly addPart: AddPart;
   private readonly weightOfPixel: number;
   private readonly byCentre: boolean;
+  private readonly map: PlaneMap | null;
+  private readonly ground: ArrayLike<number> | null;
 
-  constructor(grid: GridFrame, frame: RasterFrame, { bands, noData = [], weighting = 'auto' }: SumsOptions) {
+  constructor(grid: GridFrame, frame: RasterFrame, { bands, noData = [], weighting = 'auto', ground }: SumsOptions) {
     this.window = pixelWindow(grid, frame);
     this.sums = { values: new Float64Array(grid.cols * grid.rows * (bands + 1)), bands, cols: grid.cols, rows: grid.rows };
     this.noData = noData;
     this.byCentre = weighting === 'centre' || (weighting === 'auto' && pixelsPerCell(grid, frame) > 3.999);
     this.weightOfPixel = this.byCentre && this.window !== null ? pixelAreaInCells(grid, frame) : 1;
-    this.addPart = this.window === null ? () => undefined : wayToAdd(grid, pixelsToCells(grid, frame, this.window), { byCentre: this.byCentre, window: this.window });
+    this.map = this.window === null ? null : pixelsToCells(grid, frame, this.window);
+    this.ground = ground ?? null;
+    this.addPart = this.window === null || this.map === null ? () => undefined : wayToAdd(grid, this.map, { byCentre: this.byCentre, window: this.window });
+  }
+
+  /** May pixels of this rectangle touch a cell with ground in it? */
+  needs(place: PixelWindow): boolean {
+    if (this.window === null || this.map === null) return false;
+    if (this.ground === null) return true;
+    const { cols, rows } = this.sums;
+    const cells = cellsUnder(this.map, place);
+    for (let row = Math.max(0, cells.firstRow); row <= Math.min(rows - 1, cells.lastRow); row++) {
+      for (let col = Math.max(0, cells.firstCol); col <= Math.min(cols - 1, cells.lastCol); col++) if (this.ground[row * cols + col]! > 0) return true;
+    }
+    return false;
   }
 
   add(tile: PixelTile): void {

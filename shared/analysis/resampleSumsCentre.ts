@@ -9,6 +9,8 @@ import type { PixelTile } from './resampleTile.ts';
 export interface CentreTables {
   readonly window: PixelWindow;
   readonly colOf: Int32Array;
+  /** For each pixel column the first one after it that lies in another column of cells, or the window's end. */
+  readonly runEnd: Int32Array;
   readonly rowOf: Int32Array;
 }
 
@@ -23,40 +25,46 @@ export function centreTables(grid: GridFrame, map: PlaneMap, window: PixelWindow
     map.row({ u: window.firstCol + 0.5, v: window.firstRow + at + 0.5, count: 1 }, place);
     return within(place[1]!, grid.rows);
   });
-  return { window, colOf, rowOf };
+  const runEnd = new Int32Array(window.cols);
+  for (let at = window.cols - 1; at >= 0; at--) runEnd[at] = at + 1 < window.cols && colOf[at + 1] === colOf[at] ? runEnd[at + 1]! : at + 1;
+  return { window, colOf, runEnd, rowOf };
 }
 
 /** Raster and grid with parallel sides: sums run along a pixel row until the cell changes. */
-export function addByCentreTable(sums: SumTable, part: TilePart, { window, colOf, rowOf }: CentreTables): void {
+export function addByCentreTable(sums: SumTable, part: TilePart, { window, colOf, runEnd, rowOf }: CentreTables): void {
   const { tile, fromRow, toRow } = part;
   for (let row = fromRow; row < toRow; row++) {
     const cellRow = rowOf[row - window.firstRow]!;
     if (cellRow < 0) continue;
     const lineStart = (row - tile.firstRow) * tile.storedCols - tile.firstCol;
-    if (sums.bands === 1) addLineOfOne(sums, part, { colOf, firstCol: window.firstCol, cellStart: cellRow * sums.cols, lineStart });
-    else if (sums.bands === 2) addLineOfTwo(sums, part, { colOf, firstCol: window.firstCol, cellStart: cellRow * sums.cols, lineStart });
-    else addLineOfMany(sums, part, { colOf, firstCol: window.firstCol, cellStart: cellRow * sums.cols, lineStart });
+    const line = { colOf, runEnd, firstCol: window.firstCol, cellStart: cellRow * sums.cols, lineStart };
+    if (sums.bands === 1) addLineOfOne(sums, part, line);
+    else if (sums.bands === 2) addLineOfTwo(sums, part, line);
+    else addLineOfMany(sums, part, line);
   }
 }
 
 /** `lineStart + col` is the stored pixel of a raster column. */
 interface Line {
   readonly colOf: Int32Array;
+  readonly runEnd: Int32Array;
   readonly firstCol: number;
   readonly cellStart: number;
   readonly lineStart: number;
 }
 
-function addLineOfOne({ values, cols, rows }: SumTable, { tile, noData, fromCol, toCol }: TilePart, { colOf, firstCol, cellStart, lineStart }: Line): void {
+function addLineOfOne({ values, cols, rows }: SumTable, { tile, noData, fromCol, toCol }: TilePart, { colOf, runEnd, firstCol, cellStart, lineStart }: Line): void {
   const { values: samples, offset, stride } = tile.bands[0]!;
   const missing = noData[0]!;
   const weights = cols * rows;
+  let at = (lineStart + fromCol) * stride + offset;
   for (let col = fromCol; col < toCol; ) {
     const cellCol = colOf[col - firstCol]!;
+    const end = Math.min(toCol, firstCol + runEnd[col - firstCol]!);
     let sum = 0;
     let count = 0;
-    for (; col < toCol && colOf[col - firstCol] === cellCol; col++) {
-      const sample = samples[(lineStart + col) * stride + offset]!;
+    for (; col < end; col++, at += stride) {
+      const sample = samples[at]!;
       if (sample === missing || sample - sample !== 0) continue;
       sum += sample;
       count++;
@@ -67,20 +75,23 @@ function addLineOfOne({ values, cols, rows }: SumTable, { tile, noData, fromCol,
   }
 }
 
-function addLineOfTwo({ values, cols, rows }: SumTable, { tile, noData, fromCol, toCol }: TilePart, { colOf, firstCol, cellStart, lineStart }: Line): void {
+function addLineOfTwo({ values, cols, rows }: SumTable, { tile, noData, fromCol, toCol }: TilePart, { colOf, runEnd, firstCol, cellStart, lineStart }: Line): void {
   const { values: samplesA, offset: offsetA, stride: strideA } = tile.bands[0]!;
   const { values: samplesB, offset: offsetB, stride: strideB } = tile.bands[1]!;
   const missingA = noData[0]!;
   const missingB = noData[1]!;
   const count = cols * rows;
+  let atA = (lineStart + fromCol) * strideA + offsetA;
+  let atB = (lineStart + fromCol) * strideB + offsetB;
   for (let col = fromCol; col < toCol; ) {
     const cellCol = colOf[col - firstCol]!;
+    const end = Math.min(toCol, firstCol + runEnd[col - firstCol]!);
     let sumA = 0;
     let sumB = 0;
     let pixels = 0;
-    for (; col < toCol && colOf[col - firstCol] === cellCol; col++) {
-      const a = samplesA[(lineStart + col) * strideA + offsetA]!;
-      const b = samplesB[(lineStart + col) * strideB + offsetB]!;
+    for (; col < end; col++, atA += strideA, atB += strideB) {
+      const a = samplesA[atA]!;
+      const b = samplesB[atB]!;
       if (a === missingA || b === missingB || a - a !== 0 || b - b !== 0) continue;
       sumA += a;
       sumB += b;

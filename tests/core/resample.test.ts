@@ -142,6 +142,40 @@ describe('averages of pixels over cells', () => {
     expect(sums.cells()[0]!.some(Number.isNaN)).toBe(false);
   });
 
+  it.each([
+    ['north up', 0, 0.25, undefined],
+    ['turned', 0.4, 0.25, undefined],
+    ['by shared area', 0, 1.5, undefined],
+    ['in degrees', 0, 0.25, 'EPSG:4326'],
+  ] as const)('are the same without the tiles far from the block: %s', (_, turn, pixelM, system) => {
+    // A ring of ground: tiles lie outside, within its hole and across its sides.
+    const side = (from: number, to: number) => [[X + from, Y - from], [X + to, Y - from], [X + to, Y - to], [X + from, Y - to], [X + from, Y - from]] as [number, number][];
+    const grid = gridOfOutline([[side(6.7, 93.1), side(21.3, 80.9).reverse()]], CORNER.epsg, 2);
+    const [across, down] = [pixelM * Math.cos(turn), pixelM * Math.sin(turn)];
+    const [lon, lat] = fromUtm([X - 10, Y + 10], CORNER.epsg);
+    const size = Math.round(130 / pixelM);
+    const tileSize = Math.round(8 / pixelM);
+    const frame: RasterFrame =
+      system === undefined
+        ? { width: size, height: size, transform: [X - 10 - 50 * Math.sin(turn), across, down, Y + 10, down, -across] }
+        : { width: size, height: size, transform: [lon, 2.7e-6, 0, lat, 0, -2.25e-6], toGrid: proj4(system, utmDefinition(CORNER.epsg)) };
+    const random = seededRandom(21);
+    const raster = { values: Array.from({ length: size * size }, () => Math.floor(random() * 65536)), frame };
+    const all = new CellSums(grid, frame, { bands: 1 });
+    feed(all, raster, tileSize);
+    const needed = resampler(grid, frame, { method: 'mean', bands: 1 });
+    let left = 0;
+    for (let firstRow = 0; firstRow < size; firstRow += tileSize) {
+      for (let firstCol = 0; firstCol < size; firstCol += tileSize) {
+        if (needed.needs!({ firstCol, firstRow, cols: tileSize, rows: tileSize })) needed.add(tileOf(raster, { firstCol, firstRow, tileSize }));
+        else left++;
+      }
+    }
+    const onGround = (cells: Float32Array) => cells.filter((__, cell) => grid.share[cell]! > 0);
+    expect(onGround(needed.cells()[0]!)).toEqual(onGround(all.cells()[0]!));
+    expect(left).toBeGreaterThan(20);
+  });
+
   it('read only the pixels near the grid, and none when the raster lies elsewhere', () => {
     const grid = rectangleGrid(10, 10, 2);
     expect(pixelWindow(grid, northUp(1000, 1000, [X - 100, Y + 100], 0.5))).toEqual({ firstCol: 198, firstRow: 198, cols: 44, rows: 44 });

@@ -46,6 +46,8 @@ const SHARED_ROWS = 64;
 /** What takes the pixels of its window. */
 export interface BlockTaker {
   readonly window: PixelWindow | null;
+  /** Does a rectangle within its window matter? Absent: it does. */
+  needs?(place: PixelWindow): boolean;
   add(tile: PixelTile): void;
 }
 
@@ -93,7 +95,8 @@ function neededBlocks({ layout: { blockWidth, blockHeight, blocksAcross, blocksD
     const inRow = sinks.filter(({ window }) => window !== null && window.firstRow < (blockRow + 1) * blockHeight && window.firstRow + window.rows > blockRow * blockHeight);
     const row: NeededBlock[] = [];
     for (let blockCol = 0; inRow.length > 0 && blockCol < blocksAcross; blockCol++) {
-      const takers = inRow.filter(({ window }) => window!.firstCol < (blockCol + 1) * blockWidth && window!.firstCol + window!.cols > blockCol * blockWidth);
+      const place = { firstCol: blockCol * blockWidth, firstRow: blockRow * blockHeight, cols: blockWidth, rows: blockHeight };
+      const takers = inRow.filter((taker) => taker.window!.firstCol < place.firstCol + blockWidth && taker.window!.firstCol + taker.window!.cols > place.firstCol && (taker.needs?.(place) ?? true));
       if (takers.length > 0) row.push({ blockCol, blockRow, takers });
     }
     if (row.length > 0) needed.push(row);

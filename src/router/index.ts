@@ -28,11 +28,24 @@ function records(): RouteRecordRaw[] {
   });
 }
 
-/** The router, with the guard that asks for sign-in, keeps the estate in step and turns people away from what they may not see. */
-export function createAppRouter(session: SessionStore): Router {
+/**
+ * The router, with the guard that asks for sign-in, keeps the estate in step and turns people away from what they may not see.
+ * `leave` loads an address as a fresh page.
+ */
+export function createAppRouter(session: SessionStore, leave: (address: string) => void = (address) => window.location.assign(address)): Router {
+  // What one person saw of one estate stays in memory as long as the page does: the next begins with a fresh page, so that nobody is shown, even for a moment, what was another's.
+  let seen: string | null = null;
   const router = createRouter({ history: createWebHistory(), routes: records(), scrollBehavior: (to, from, saved) => saved ?? (to.name === from.name ? false : { top: 0 }) });
   router.beforeEach(async (to) => {
     const answer = guard(to, session, router);
+    if (answer === true && typeof to.params.estateId === 'string') {
+      const here = `${session.person?.id} ${to.params.estateId}`;
+      if (seen !== null && seen !== here) {
+        leave(router.resolve(to).href);
+        return false;
+      }
+      seen = here;
+    }
     // The page behind a notice's code stands at the door and speaks of picking.
     if (answer === true && (to.meta.frame === 'office' || to.name === 'noticeState')) await loadOfficeTexts();
     return answer;

@@ -113,4 +113,19 @@ describe('who may go where', () => {
     await router.push('/e/e1/lots');
     expect(router.currentRoute.value.name).not.toBe('lots');
   });
+
+  it('another estate, and another person on the same device, begin with a fresh page', async () => {
+    const left: string[] = [];
+    const store = session({ ...signedIn(['manager'], { 'lots.see': 'read' }), estates: [estate('e1', ['manager']), estate('e2', ['manager'])] });
+    const router = createAppRouter(store, (address) => left.push(address));
+    router.addRoute({ name: 'lots', path: '/e/:estateId/lots', component: { template: '<i />' }, meta: { frame: 'office', needs: ['lots.see', 'read'] } });
+    await router.push('/e/e1/lots');
+    await router.push('/e/e1/lots?scenario=1');
+    expect([router.currentRoute.value.fullPath, left]).toEqual(['/e/e1/lots?scenario=1', []]);
+    await router.push('/e/e2/lots#free');
+    expect([router.currentRoute.value.fullPath, left]).toEqual(['/e/e1/lots?scenario=1', ['/e/e2/lots#free']]);
+    store.session = { ...store.session, person: { ...store.session.person!, id: 'q' } };
+    await router.push('/e/e1/lots?scenario=2');
+    expect(left.at(-1)).toBe('/e/e1/lots?scenario=2');
+  });
 });

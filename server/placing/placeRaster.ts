@@ -91,9 +91,17 @@ function layerOf({ understood, answers, blocks, grids, readings }: Placing, type
     bandMeans: readings[at]!.bandMeans,
     canopy: readings[at]!.canopy ?? null,
     scaleTimes,
+    ...heightFacts(understood, answers),
   }));
   const unit = type === 'soilNumber' ? (answers.unit ?? '') : layerType(type).unit;
   return { type, derivedFrom: null, unit, value: index ?? (understood.bands.length > 1 ? `band ${answers.band}` : null), classes: type === 'soilClass' ? classesOf(placed) : null, pixelSizeM: understood.pixelSizeM, reference: understood.crsName, blocks: placed };
+}
+
+/** What file and person say about the unit of heights. */
+function heightFacts({ verticalUnit, reference }: RasterUnderstood, { purpose, unit }: ImportAnswers): Pick<LayerFacts, 'heightUnit' | 'heightUnitInFile' | 'gridInFeet'> {
+  if (purpose !== 'elevation') return {};
+  const metresAUnit = reference?.unitM ?? 1;
+  return { heightUnit: unit ?? 'm', heightUnitInFile: verticalUnit === null ? null : verticalUnit === 'metre' ? 'm' : 'ft', gridInFeet: Math.abs(metresAUnit - 0.3048) < 0.001 };
 }
 
 /** Slope and the two parts of the facing, computed on the block's own cells from elevations in metres. */

@@ -1,11 +1,11 @@
 /**
- * Cell values from canopy pixels alone. Which pixel is canopy is told by a threshold on its index (Otsu 1979, one threshold
- * a block) or by its distance to a vine row. Used in two passes over the pixels for the threshold (`addToHistogram` for
+ * Cell values from canopy pixels alone. Which pixel is canopy is told by a threshold on its index (one a block, canopyKinds)
+ * or by its distance to a vine row. Used in two passes over the pixels for the threshold (`addToHistogram` for
  * all, `settle`, then `add` for all), in one for rows. Fine pixels only: each counts in the cell of its centre.
  * In: tiles. Out: band means of canopy per cell. Memory: cells × (bands + 2) doubles and one histogram.
  */
+import { CanopyKinds, type CanopyThreshold } from './canopyKinds.ts';
 import type { Grid } from './grid.ts';
-import { otsuThreshold } from './otsu.ts';
 import { pixelAreaInCells, pixelsToCells, pixelWindow, type PixelWindow, type RasterFrame } from './resampleFrame.ts';
 import type { PlaneMap } from './resampleMap.ts';
 import { readPixel } from './resampleSumsCentre.ts';
@@ -29,12 +29,9 @@ export interface CanopyFigures {
   readonly separability: number;
   /** Share of the block's pixels that are canopy, 0…1. */
   readonly share: number;
+  /** How full the valley at the threshold is, and which kinds it parts; null for rows. */
+  readonly split: Pick<CanopyThreshold, 'valley' | 'kinds'> | null;
 }
-
-const BINS = 1024;
-/** Range of the index in the histogram; all offered indices lie inside, ratios are folded into it. */
-const LOW = -1.5;
-const HIGH = 1.5;
 
 export class CanopyCells implements PixelSink {
   readonly window: PixelWindow | null;
@@ -42,10 +39,9 @@ export class CanopyCells implements PixelSink {
   private readonly options: CanopyOptions;
   private readonly map: PlaneMap | null;
   private readonly cellsAPixel: number;
-  private readonly counts = new Float64Array(BINS);
+  private readonly kinds: CanopyKinds;
   private readonly sums: Float64Array;
-  private threshold = -Infinity;
-  private separability = NaN;
+  private found: CanopyThreshold | null = null;
   /** Number, sum and squares of the index of canopy and other pixels inside. */
   private readonly moments = { canopy: [0, 0, 0], other: [0, 0, 0] };
 
@@ -55,6 +51,7 @@ export class CanopyCells implements PixelSink {
     this.window = pixelWindow(grid, frame);
     this.map = this.window === null ? null : pixelsToCells(grid, frame, this.window);
     this.cellsAPixel = this.window === null ? 0 : pixelAreaInCells(grid, frame);
+    this.kinds = new CanopyKinds(grid, options.reachM);
     this.sums = new Float64Array(grid.cols * grid.rows * (options.bands + 2));
   }
 
@@ -63,27 +60,24 @@ export class CanopyCells implements PixelSink {
   }
 
   addToHistogram(tile: PixelTile): void {
-    const scale = BINS / (HIGH - LOW);
     this.eachPixel(tile, ({ cell, index }) => {
-      if (this.grid.inside[cell] === 1) this.counts[Math.min(BINS - 1, Math.max(0, Math.floor((index - LOW) * scale)))]! += 1;
+      if (this.grid.inside[cell] === 1) this.kinds.add(cell, index);
     });
   }
 
   /** Ends the first pass. */
   settle(): void {
-    const found = otsuThreshold(this.counts);
-    if (found === null) return;
-    this.threshold = LOW + ((found.bin + 1) * (HIGH - LOW)) / BINS;
-    this.separability = found.separability;
+    this.found = this.kinds.settle();
   }
 
   add(tile: PixelTile): void {
     const { bands, isOnRow } = this.options;
     const { grid, sums } = this;
     const count = grid.cols * grid.rows;
+    const threshold = this.found?.threshold ?? -Infinity;
     this.eachPixel(tile, ({ cell, index, pixel, u, v }) => {
       sums[(bands + 1) * count + cell]! += 1;
-      const isCanopy = isOnRow === null ? index >= this.threshold : isOnRow(grid.x0 + u * grid.cellSizeM, grid.y0 - v * grid.cellSizeM);
+      const isCanopy = isOnRow === null ? index >= threshold : isOnRow(grid.x0 + u * grid.cellSizeM, grid.y0 - v * grid.cellSizeM);
       if (grid.inside[cell] === 1) addMoment(isCanopy ? this.moments.canopy : this.moments.other, index);
       if (!isCanopy) return;
       for (let band = 0; band < bands; band++) sums[band * count + cell]! += pixel[band]!;
@@ -119,7 +113,10 @@ export class CanopyCells implements PixelSink {
     const { canopy, other } = this.moments;
     const [number, others] = [canopy[0]!, other[0]!];
     const isByRows = this.options.isOnRow !== null;
-    return { threshold: isByRows ? null : this.threshold, separability: isByRows ? standardisedDifference(canopy, other) : this.separability, share: number + others === 0 ? 0 : number / (number + others) };
+    const share = number + others === 0 ? 0 : number / (number + others);
+    if (isByRows) return { threshold: null, separability: standardisedDifference(canopy, other), share, split: null };
+    const { threshold = -Infinity, separability = NaN, valley = 1, kinds = 'two' } = this.found ?? {};
+    return { threshold, separability, share, split: { valley, kinds } };
   }
 
   /** Adds the sums of the cells at a distance of `ring` cells, within the reach. */

@@ -37,6 +37,10 @@ export interface LayerFacts {
   readonly bandMeans?: BandMeans | null;
   /** Values of canopy alone: how it was told from the alleys; null where all pixels count. */
   readonly canopy?: CanopyFigures | null;
+  /** Unit of heights as told, as the file says it (m or ft; null where it does not), and whether its grid is in feet; of elevations alone. */
+  readonly heightUnit?: string | null;
+  readonly heightUnitInFile?: string | null;
+  readonly gridInFeet?: boolean;
   /** Length of the file's outline against that of a block where it is that of a mixed-up unit of length. */
   readonly scaleTimes?: number | null;
   /** Points inside the block that the cells come from; null for pictures and shapes. */
@@ -62,10 +66,17 @@ const ranges: Record<string, readonly [number, number]> = { ndvi: [-1, 1], gndvi
 /** Layers whose pattern changes with the season: their day matters. */
 const dated = new Set(['vigour', 'conductivity', 'yield']);
 
-/** Otsu's measure below this: one hump of pixels, not canopy and alleys (judgement). */
+/** Otsu's measure below this, or a valley between the humps fuller than the second: one hump of pixels, not canopy and alleys (judgement). */
 const clearlyApart = 0.6;
+const clearValley = 0.8;
 /** Strips along rows whose index lies less than this above the alleys miss the canopy (judgement). */
 const stripsAbove = 0.5;
+/** A block steeper than this on average is rare even on terraces' slopes; the highest vineyards lie a little above 3,000 m (judgement). */
+const steepSlopeDeg = 25;
+const highestVineyardM = 3400;
+const footM = 0.3048;
+/** Pixels from this size on come from above the haze (judgement). */
+const aboveHazeM = 1.5;
 /** Cloud or shadow over more of the block than this leaves too little ground to zone on. */
 const mostHidden = 0.1;
 /** Rows and cells of nearly one width beat in stripes narrower than this; a camera's swath is wider (judgement). */
@@ -94,7 +105,9 @@ const checks: readonly Check[] = [
   ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.pixelSizeM > facts.rowSpacingM / 4 ? { code: 'alleyMixed', severity: 'amber', params: { pixelM: facts.pixelSizeM, spacingM: facts.rowSpacingM } } : null),
   ({ facts }) => (facts.type === 'vigour' && facts.alleys === 'green' ? { code: 'greenAlleys', severity: 'amber', params: {} } : null),
   ({ facts }) => canopy(facts),
+  (judged) => heights(judged),
   ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.bandMeans === null ? { code: 'cloudUnseen', severity: 'note', params: {} } : null),
+  ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.pixelSizeM >= aboveHazeM && facts.bandMeans ? { code: 'hazeUnseen', severity: 'note', params: {} } : null),
   ({ facts }) => (facts.type === 'conductivity' && facts.steelTrellis === 'yes' ? { code: 'steelTrellis', severity: 'amber', params: {} } : null),
   ({ facts }) => (facts.type === 'conductivity' && facts.steelTrellis === 'unknown' ? { code: 'trellisUnknown', severity: 'note', params: {} } : null),
   ({ facts }) => (facts.pointCount !== null && facts.pointCount < fewPoints ? { code: 'fewPoints', severity: 'amber', params: { points: facts.pointCount, wanted: fewPoints } } : null),
@@ -146,9 +159,26 @@ function canopy({ canopy: figures }: LayerFacts): PlacedFinding[] {
   if (figures === undefined || figures === null) return [];
   const percent = Math.round(figures.share * 100);
   const isByRows = figures.threshold === null;
-  const isClear = figures.separability >= (isByRows ? stripsAbove : clearlyApart);
+  const isClear = figures.separability >= (isByRows ? stripsAbove : clearlyApart) && (figures.split?.valley ?? 0) <= clearValley;
   const told: PlacedFinding = { code: isByRows ? 'canopyByRows' : 'canopyOnly', severity: 'note', params: { percent, ...(isByRows ? {} : { value: figures.threshold! }) } };
+  const kinds = figures.split?.kinds ?? 'two';
+  if (isClear && kinds !== 'two') return [{ code: kinds === 'three' ? 'canopyOfThree' : 'canopyPatchy', severity: 'amber', params: {} }, told];
   return isClear ? [told] : [{ code: isByRows ? 'rowsMissCanopy' : 'canopyUnclear', severity: 'amber', params: {} }, told];
+}
+
+/** Heights in a unit that the file or the land contradicts: feet taken for metres make every slope 3.28 times too steep. */
+function heights({ facts: { type, heightUnit, heightUnitInFile, gridInFeet }, stats }: Judged): PlacedFinding | null {
+  if (typeof heightUnit !== 'string') return null;
+  const isFeet = (unit: string) => unit !== 'm';
+  if (typeof heightUnitInFile === 'string') {
+    return isFeet(heightUnitInFile) === isFeet(heightUnit) ? null : { code: 'heightUnit', severity: 'amber', params: { file: heightUnitInFile, told: heightUnit } };
+  }
+  if (isFeet(heightUnit)) return null;
+  if (type === 'slope' && stats.mean !== null && stats.mean > steepSlopeDeg) {
+    return { code: 'steep', severity: 'amber', params: { slope: Math.round(stats.mean), inFeet: Math.round((Math.atan(Math.tan((stats.mean * Math.PI) / 180) * footM) * 180) / Math.PI) } };
+  }
+  if (type === 'elevation' && stats.max !== null && stats.max > highestVineyardM) return { code: 'high', severity: 'amber', params: { height: Math.round(stats.max), inFeet: Math.round(stats.max * footM) } };
+  return gridInFeet === true ? { code: 'feetGrid', severity: 'note', params: {} } : null;
 }
 
 function isConstant(stats: LayerStats): boolean {

@@ -64,9 +64,38 @@ describe('findings about a layer', () => {
 
   it('stop a file whose outline is 3.28 times that of a block, and doubt a canopy that is not apart from the alleys', () => {
     expect(codes(findings(slope, { scaleTimes: 3.2808 }))).toEqual(['red scale']);
-    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.8, share: 0.3 } }))).toEqual(['note canopyOnly']);
-    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.4, share: 0.3 } }))).toEqual(['amber canopyUnclear', 'note canopyOnly']);
-    expect(codes(findings(slope, { canopy: { threshold: null, separability: 0.1, share: 0.3 } }))).toEqual(['amber rowsMissCanopy', 'note canopyByRows']);
+    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.8, share: 0.3, split: { valley: 0.1, kinds: 'two' } } }))).toEqual(['note canopyOnly']);
+    expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.4, share: 0.3, split: { valley: 0.1, kinds: 'two' } } }))).toEqual(['amber canopyUnclear', 'note canopyOnly']);
+    expect(codes(findings(slope, { canopy: { threshold: null, separability: 0.1, share: 0.3, split: null } }))).toEqual(['amber rowsMissCanopy', 'note canopyByRows']);
+  });
+
+  it('doubt a canopy of one hump and one that is the greenest of three kinds', () => {
+    const canopy = (valley: number, kinds: 'two' | 'three' | 'patchy') => codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.7, share: 0.3, split: { valley, kinds } } }));
+    expect(canopy(0.95, 'two')).toEqual(['amber canopyUnclear', 'note canopyOnly']);
+    expect(canopy(0.3, 'three')).toEqual(['amber canopyOfThree', 'note canopyOnly']);
+    expect(canopy(0.3, 'patchy')).toEqual(['amber canopyPatchy', 'note canopyOnly']);
+  });
+
+  it('doubt heights whose unit the file or the land contradicts', () => {
+    const heights = (value: number, facts: Partial<LayerFacts>, type = 'elevation') => findings((col) => value + col / 100, { type, index: null, heightUnit: 'm', heightUnitInFile: null, ...facts });
+    expect(codes(heights(120, {}))).toEqual([]);
+    expect(codes(heights(120, { heightUnitInFile: 'ft' }))).toEqual(['amber heightUnit']);
+    expect(codes(heights(120, { heightUnit: 'ft', heightUnitInFile: 'm' }))).toEqual(['amber heightUnit']);
+    expect(codes(heights(120, { heightUnit: 'ftUS', heightUnitInFile: 'ft' }))).toEqual([]);
+    expect(codes(heights(120, { gridInFeet: true }))).toEqual(['note feetGrid']);
+    expect(codes(heights(3900, {}))).toEqual(['amber high']);
+    expect(codes(heights(3900, { heightUnit: 'ft' }))).toEqual([]);
+    // A slope of 40° in metres is one of 14° when they were feet: tan⁻¹(0.3048 · tan 40°).
+    const [steep] = heights(40, {}, 'slope');
+    expect(steep).toMatchObject({ code: 'steep', severity: 'amber', params: { slope: 40, inFeet: 14 } });
+    expect(codes(heights(12, {}, 'slope'))).toEqual([]);
+  });
+
+  it('say that haze cannot be seen in a picture from above it', () => {
+    const band = (value: number) => new Float32Array(grid.cols * grid.rows).fill(value);
+    const of = (pixelSizeM: number) => codes(findings(slope, { pixelSizeM, rowSpacingM: 100, bandMeans: { nir: band(4000), red: band(600) } }));
+    expect(of(3)).toContain('note hazeUnseen');
+    expect(of(0.1)).not.toContain('note hazeUnseen');
   });
 
   it('remember steel trellis and thin surveys', () => {

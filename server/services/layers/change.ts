@@ -6,6 +6,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
 import { Person } from '../../models/Person.ts';
+import { storable } from '../../models/storable.ts';
 
 /** Name, unit, day and legend; never the values. */
 export async function changeLayer(access: Access, layerId: string, change: LayerChange): Promise<void> {
@@ -26,7 +27,7 @@ export async function overrideLayer(access: Access, layerId: string, { blockId, 
     const here = await BlockLayer.query(trx).findOne({ estateId: access.estateId, layerId, blockId }).forUpdate().throwIfNotFound();
     if (!here.findings.some((finding) => finding.severity === 'red')) throw new Unusable('nothingRed', `${layer.name} has no finding that keeps it from being used here.`);
     const person = await Person.query(trx).findById(access.personId).throwIfNotFound();
-    await BlockLayer.query(trx).where({ estateId: access.estateId, layerId, blockId }).patch({ override: { personId: person.id, by: person.name, reason, at: now.toISOString() } });
+    await BlockLayer.query(trx).where({ estateId: access.estateId, layerId, blockId }).patch(storable({ override: { personId: person.id, by: person.name, reason, at: now.toISOString() }, findings: here.findings.filter(({ code }) => code !== 'overrideLapsed') }));
     await writeAudit(trx, access, { action: 'layer.override', subjectType: 'layer', subjectId: layerId, subjectName: layer.name, after: { blockId, findings: here.findings.filter((finding) => finding.severity === 'red').map((finding) => finding.code) }, reason });
   });
 }

@@ -43,7 +43,16 @@ export async function understandAgain(input: string | Uint8Array, options: Raste
   return (format.readAgain ?? format.read)(input, options);
 }
 
+/** Files that programs lay beside a picture, and what to do about them. */
+const sideFiles: readonly (readonly [RegExp, fact: string, remedy: string])[] = [
+  [/\.ovr$/i, 'It is an overview beside a picture.', 'The picture alone is enough.'],
+  [/\.aux(\.xml)?$/i, 'It is a file of statistics beside a picture.', 'The picture alone is enough; if its reference system stands only here, choose it when asked.'],
+  [/\.msk$/i, 'It is the mask of a picture in a file of its own, which is not read.', 'Export the picture with its mask inside, or with a no-data value.'],
+];
+
 async function formatOf(input: string | Uint8Array, options: RasterReadOptions): Promise<ImportFormat> {
+  const beside = sideFiles.find(([name]) => name.test(options.fileName));
+  if (beside !== undefined) throw new ImportProblem({ code: 'wrong-type', fact: beside[1], remedy: beside[2], params: { found: beside[1].slice(6, -1) }, file: options.fileName });
   const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffContents(source, options.fileName)));
   const format = importFormats.find(({ contents }) => contents.includes(sniffed.format));
   if (format === undefined) throw unreadable(sniffed, options.fileName);

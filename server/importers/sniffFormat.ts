@@ -25,6 +25,27 @@ const foreign: readonly (readonly [bytes: readonly number[], name: string])[] = 
   [[0x89, 0x48, 0x44, 0x46], 'an HDF5 file'],
   [[0x43, 0x44, 0x46], 'a NetCDF file'],
   [[0x00, 0x00, 0x00, 0x0c, 0x6a, 0x50], 'a JPEG 2000 picture'],
+  [[0xff, 0x4f, 0xff, 0x51], 'a JPEG 2000 picture'],
+  [[0x66, 0x67, 0x62, 0x03], 'a FlatGeobuf file'],
+  [[0x50, 0x41, 0x52, 0x31], 'a Parquet file'],
+  [[0x41, 0x52, 0x52, 0x4f, 0x57, 0x31], 'an Arrow file'],
+  [[0x45, 0x48, 0x46, 0x41, 0x5f], 'an Erdas Imagine picture (.img)'],
+  [[0x4c, 0x41, 0x53, 0x46], 'a point cloud (LAS or LAZ)'],
+  [[0x47, 0x52, 0x49, 0x42], 'a GRIB weather file'],
+  [[0x52, 0x49, 0x46, 0x46], 'a WebP picture or a sound file'],
+  [[0x6d, 0x73, 0x69, 0x64], 'a MrSID picture'],
+];
+
+/** Beginnings of texts that no reader here takes. */
+const foreignTexts: readonly (readonly [RegExp, string])[] = [
+  [/^ncols\s+\d+\s+nrows\s+\d+/i, 'a grid in ESRI ASCII format'],
+  [/^<VRTDataset/i, 'a virtual picture (VRT), which only points to other files'],
+  [/^!table/i, 'a MapInfo table'],
+  [/^version\s+\d+\s+charset/i, 'a MapInfo exchange file (MIF)'],
+  [/^\s*0\s+SECTION/i, 'a DXF drawing'],
+  [/^ENVI\s/, 'the header of an ENVI picture'],
+  [/^DSAA\s/, 'a Surfer grid'],
+  [/^\{\\rtf/, 'a text document (RTF)'],
 ];
 
 /** `first` should hold the first 4096 bytes (fewer when the file is shorter). */
@@ -34,21 +55,31 @@ export function sniffFormat(first: Uint8Array, name: string): Sniffed {
   if (is([0x49, 0x49, 42, 0]) || is([0x4d, 0x4d, 0, 42]) || is([0x49, 0x49, 43, 0]) || is([0x4d, 0x4d, 0, 43])) return found('geotiff');
   if (is([0x50, 0x4b, 3, 4]) || is([0x50, 0x4b, 5, 6])) return found('zip');
   if (is([...'SQLite format 3'].map((letter) => letter.charCodeAt(0)))) return found('geopackage');
-  if (is([0, 0, 0x27, 0x0a])) return found('shapefile-part');
+  if (is([0, 0, 0x27, 0x0a]) || (/\.(dbf|shx|sbn|sbx|cpg|qpj)$/i.test(name) && first[0] !== 0x50)) return found('shapefile-part');
   const other = foreign.find(([bytes]) => is(bytes));
   if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
   return sniffText(first, name);
 }
 
 function sniffText(first: Uint8Array, name: string): Sniffed {
+  if (first[0] === 0xff && first[1] === 0xfe && first[2] === 0 && first[3] === 0) return { format: 'foreign', foreignName: 'a text in UTF-32 letters; save it as UTF-8' };
   const wide = (first[0] === 0xff && first[1] === 0xfe) || (first[0] === 0xfe && first[1] === 0xff) || first.subarray(0, 200).filter((byte) => byte === 0).length > Math.min(first.length, 200) / 3;
   const text = (wide ? String.fromCharCode(...first.filter((byte) => byte !== 0 && byte < 0xfe)) : new TextDecoder().decode(first)).replace(/^\uFEFF/, '').trimStart();
-  if (!wide && first.subarray(0, 2000).includes(0)) return { format: 'foreign', foreignName: 'a binary file of an unknown kind' };
+  if (!wide && isBinary(first.subarray(0, 2000))) return { format: 'foreign', foreignName: 'a binary file of an unknown kind' };
+  const other = foreignTexts.find(([beginning]) => beginning.test(text));
+  if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
   if (/^<\?xml|^<kml|^<gpx|^<!--/i.test(text)) return found(/<kml[\s>]/i.test(text) ? 'kml' : /<gpx[\s>]/i.test(text) ? 'gpx' : 'xml');
   if (/^<!doctype html|^<html|^<head/i.test(text)) return { format: 'foreign', foreignName: 'a web page' };
-  if (/^[{[]/.test(text)) return found('geojson');
+  // A record separator opens each line of a GeoJSON text sequence (RFC 8142).
+  if (/^[{[]/.test(text.startsWith('\u001e') ? text.slice(1).trimStart() : text)) return found('geojson');
   if (/^(PROJCS|GEOGCS|PROJCRS)\[/.test(text)) return { format: 'foreign', foreignName: 'a projection file (.prj) without its layer' };
   return /\.(csv|tsv|txt|tab|asc|xyz)$/i.test(name) || /[,;\t|]/.test(text.split(/\r?\n/)[0] ?? '') ? found('table') : { format: 'foreign', foreignName: 'a text of an unknown kind' };
+}
+
+/** A zero, or more control characters than any text has. */
+function isBinary(bytes: Uint8Array): boolean {
+  const controls = bytes.filter((byte) => byte < 9 || (byte > 13 && byte < 27) || (byte > 27 && byte < 30) || byte === 31 || byte === 127).length;
+  return bytes.includes(0) || controls > 0.02 * bytes.length;
 }
 
 function found(format: SniffedFormat): Sniffed {

@@ -14,6 +14,8 @@ export interface QuestionChoice {
   label: string;
   /** Where the file would lie with this answer, for the ghost outline on the map. */
   outlineLonLat?: RingLonLat;
+  /** Some positions of the file with this answer. */
+  sampleLonLat?: readonly LonLat[];
   /** From the estate; null when the estate's place is not known. */
   distanceKm?: number | null;
 }

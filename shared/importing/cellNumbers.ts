@@ -30,9 +30,32 @@ export interface CellNumber {
   unit: string;
 }
 
-/** The number in a cell; thousands are taken out, a unit behind it is split off. Empty cells and words are NaN. */
-export function cellNumber(cell: string, mark: DecimalMark): CellNumber {
-  const plain = mark === ',' ? cell.replace(/\.(?=\d{3}(\D|$))/g, '').replace(',', '.') : cell.replace(/,(?=\d{3}(\D|$))/g, '');
+/**
+ * The decimal mark of one column. In a table that mixes marks, a column with cells such as 12.53 and none such as 12,53 has
+ * points, whatever the rest of the table has, and the other way; a column that does not tell follows the table.
+ */
+export function columnMark(cells: Iterable<string>, table: DecimalMark): DecimalMark {
+  let [points, commas] = [0, 0];
+  for (const cell of cells) {
+    if (/^[+-]?\d*\.(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?\.\d+/.test(cell)) points++;
+    else if (/^[+-]?\d*,(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?,\d+/.test(cell)) commas++;
+  }
+  if (points > 0 && commas === 0) return '.';
+  return commas > 0 && points === 0 ? ',' : table;
+}
+
+/** What instruments and spreadsheets write where nothing was measured. */
+const missingWords = /^(nan|n\/?a|#n\/?a|#n\/v|null|nil|none|no ?data|inf|-inf|infinity|-infinity|-+|\.+|\?+)$/i;
+
+export function isMissingWord(cell: string): boolean {
+  return missingWords.test(cell);
+}
+
+/** The number in a cell; thousands (also by spaces and apostrophes) are taken out, a unit behind it is split off. Empty cells and words are NaN. */
+export function cellNumber(text: string, mark: DecimalMark): CellNumber {
+  const cell = text.replace(/(?<=\d)['’\u00a0\u2009\u202f](?=\d{3})/g, '');
+  // A comma with other than three digits behind it parts no thousands, whatever the rest of the table does.
+  const plain = mark === ',' ? cell.replace(/\.(?=\d{3}(\D|$))/g, '').replace(',', '.') : cell.replace(/,(?=\d{3}(\D|$))/g, '').replace(/^([+-]?\d+),(?=\d+(\D|$))/, '$1.');
   const match = /^([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*([^\d\s][^\d]{0,15})?$/u.exec(plain.replace('−', '-'));
   if (match === null) return { value: NaN, unit: '' };
   return { value: Number(match[1]), unit: (match[2] ?? '').trim() };

@@ -1,5 +1,5 @@
 import type { ImportWarning } from '../understood.ts';
-import { cellNumber, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
+import { cellNumber, columnMark, isMissingWord, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
 import type { ParsedTable } from './parseTable.ts';
 
 export interface CollectedColumns {
@@ -20,11 +20,12 @@ export function collectColumns(table: ParsedTable, kept: readonly number[], { ma
     const units = new Set<string>();
     let filled = 0;
     let numeric = 0;
+    const own = columnMark(kept.map((row) => table.rows[row]![column] ?? ''), mark);
     for (const [at, row] of kept.entries()) {
       const cell = table.rows[row]![column] ?? '';
-      const { value, unit } = cellNumber(cell, mark);
+      const { value, unit } = cellNumber(cell, own);
       values[at] = value;
-      if (cell !== '') filled++;
+      if (cell !== '' && !isMissingWord(cell)) filled++;
       if (!Number.isNaN(value)) numeric++;
       if (unit !== '' && units.size < 4) units.add(unit);
     }

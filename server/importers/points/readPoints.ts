@@ -4,6 +4,7 @@ import { withSource } from '../byteSource.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
 import { looksLikeDegrees, referenceQuestion } from '../reference/candidates.ts';
 import { axesQuestion } from '../reference/axesQuestion.ts';
+import { evenly, withSample } from '../reference/ghostSample.ts';
 import { checkPlacement } from '../reference/placement.ts';
 import { datumWarning, referenceFromAnswer, referenceFromEpsg, toLonLat } from '../reference/referenceSystem.ts';
 import { sniffFormat } from '../sniffFormat.ts';
@@ -40,6 +41,8 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   const columns = findPositionColumns(table.names, options.answers);
   const base = { kind: 'points' as const, separator: table.separator, decimalMark, encoding, hasHeader: table.hasHeader };
   if (columns === null) {
+    const shapes = table.names.find((_, i) => table.rows.slice(0, 20).some((row) => /^(srid=\d+;)?(multi)?(point|linestring|polygon)\s*z?m?\s*\(/i.test(row[i] ?? '')));
+    if (shapes !== undefined) throw new ImportProblem({ code: 'no-coordinates', fact: `Its places are written as text (WKT) in the column "${shapes}".`, remedy: 'Export it as GeoJSON or GeoPackage, or with a column each for X and Y.', params: { column: shapes } });
     const isReadings = namesRowsAndVines(table.names);
     if (isReadings) warnings.push({ code: 'rows-and-vines', text: 'It tells vines by row and number: readings of vines come in under "Earlier readings".' });
     const choices = numericColumns(table, decimalMark).map((name) => ({ value: name, label: name }));
@@ -51,14 +54,15 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   warnings.push(...positions.warnings);
   if (positions.kept.length === 0) throw new ImportProblem({ code: 'no-coordinates', fact: `No row has a usable position in the columns "${table.names[columns.x]}" and "${table.names[columns.y]}".`, remedy: 'Check the columns, or export the table with decimal degrees.' });
   const placed = place(positions, columns, options);
+  const sample = evenly(positions.kept.map((_, i): [number, number] => [positions.x[i]!, positions.y[i]!]));
   const kept = positions.kept.filter((_, i) => placed.lonLat[i] !== null);
   const collected = collectColumns(table, kept, { mark: decimalMark, skip: [columns.x, columns.y] });
   warnings.push(...placed.warnings, ...collected.warnings);
-  questions.push(...placed.questions);
+  questions.push(...withSample(placed.questions, sample, placed.named));
   return {
     ...base,
     // Decimal commas, units in cells and a few words among numbers leave a column one of numbers.
-    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)).map((column) => (collected.numbers.has(column.name) ? { ...column, kind: 'number' as const } : column)),
+    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)).map((column) => (collected.numbers.has(column.name) ? { ...column, kind: 'number' as const } : column.kind === 'number' && collected.texts.has(column.name) ? { ...column, kind: 'text' as const } : column)),
     position: { first: table.names[columns.x]!, second: table.names[columns.y]!, frame: placed.frame },
     reference: placed.reference,
     epsg: placed.reference?.epsg ?? null,
@@ -75,6 +79,8 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
 interface Placed {
   frame: 'lonlat' | 'projected';
   reference: ReferenceSystem | null;
+  /** The system before it was found not to fit. */
+  named: ReferenceSystem | null;
   /** One entry per kept row; null while the reference system is not known. */
   lonLat: (LonLat | null)[];
   questions: ImportQuestion[];
@@ -90,7 +96,7 @@ function place({ kept, x, y }: PositionReading, columns: PositionColumns, option
   const frame = reference?.unitM === null ? 'lonlat' : 'projected';
   if (reference === null) {
     questions.push(referenceQuestion(box, options.estateLonLat ?? null, 'Its positions are in a map projection that the table does not name.'));
-    return { frame, reference, lonLat: kept.map(() => null), questions, warnings };
+    return { frame, reference, named: null, lonLat: kept.map(() => null), questions, warnings };
   }
   if (columns.frame === 'projected' && frame === 'lonlat' && options.answers?.epsg === undefined) warnings.push({ code: 'degrees-assumed', text: 'Its positions are small enough to be degrees and are read as longitude and latitude (WGS 84). Check them on the map.' });
   const swapped = axesQuestion(box, reference, options);
@@ -98,9 +104,9 @@ function place({ kept, x, y }: PositionReading, columns: PositionColumns, option
   questions.push(...(swapped === null ? placement.questions : [swapped]));
   const datum = datumWarning(reference);
   warnings.push(...placement.warnings, ...(datum === null ? [] : [datum]));
-  if (placement.outlineLonLat === null) return { frame, reference: null, lonLat: kept.map(() => null), questions, warnings };
+  if (placement.outlineLonLat === null) return { frame, reference: null, named: reference, lonLat: kept.map(() => null), questions, warnings };
   const convert = toLonLat(reference);
-  return { frame, reference, lonLat: kept.map((_, i) => convert([x[i]!, y[i]!])), questions, warnings };
+  return { frame, reference, named: reference, lonLat: kept.map((_, i) => convert([x[i]!, y[i]!])), questions, warnings };
 }
 
 function boxOf(count: number, x: Float64Array, y: Float64Array): [number, number][] {

@@ -11,7 +11,7 @@ interface Context {
 }
 
 /** Numbers that programs write for "missing"; whole-number types also use their ends and 0. */
-const customary = [-9999, -99999, -32768, -32767, -999, -3.4028234663852886e38, 65535];
+const customary = [-9999, -99999, -10000, -32768, -32767, -999, -3.4028234663852886e38, 65535];
 
 /** Looks at a preview of one band: a likely unmarked void, a constant picture, values at the end of their range. */
 export function checkValues({ index, raw, values }: { index: number; raw: Float64Array; values: Float32Array }, band: BandUnderstood, { noDataAnswered, bands }: Context): ValueFindings {
@@ -43,7 +43,7 @@ function suspectVoid(raw: Float64Array, band: BandUnderstood): { value: number; 
     if (share === 1) continue;
     const named = customary.some((value) => value === end || Math.fround(value) === end);
     if (named) return { value: end, share };
-    if (end === 0 && share > 0.01 && standsApart(sorted)) return { value: end, share };
+    if (share > 0.01 && ((end === 0 && standsApart(sorted)) || liesFar(sorted, end) || (band.type.startsWith('float') && recurs(sorted, end)))) return { value: end, share };
   }
   return null;
 }
@@ -53,6 +53,23 @@ function standsApart(sorted: Float64Array): boolean {
   const rest = sorted.filter((value) => value !== 0);
   const spread = rest[Math.floor(rest.length * 0.95)]! - rest[Math.floor(rest.length * 0.05)]!;
   return rest[0]! > 0 && rest[0]! > spread / 4;
+}
+
+/** An end value farther from the next one than nine tenths of the rest spread. */
+function liesFar(sorted: Float64Array, end: number): boolean {
+  const rest = sorted.filter((value) => value !== end);
+  const spread = rest[Math.floor(rest.length * 0.95)]! - rest[Math.floor(rest.length * 0.05)]!;
+  const nearest = end === sorted[0] ? rest[0]! : rest[rest.length - 1]!;
+  return spread > 0 && Math.abs(nearest - end) > spread;
+}
+
+/** A round end value that comes again and again among decimals of which hardly two are alike: nothing measured is so even. */
+function recurs(sorted: Float64Array, end: number): boolean {
+  if (!Number.isInteger(end)) return false;
+  const rest = sorted.filter((value) => value !== end);
+  let repeated = 0;
+  for (let at = 1; at < rest.length; at++) if (rest[at] === rest[at - 1]) repeated++;
+  return rest.length > 100 && repeated < 0.05 * rest.length;
 }
 
 function voidQuestion({ value, share }: { value: number; share: number }): ImportQuestion {

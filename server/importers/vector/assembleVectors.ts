@@ -2,6 +2,7 @@ import type { Feature, Geometry } from 'geojson';
 import { ImportProblem } from '../importProblem.ts';
 import { limits } from '../limits.ts';
 import { referenceQuestion } from '../reference/candidates.ts';
+import { evenly, withSample } from '../reference/ghostSample.ts';
 import { checkPlacement } from '../reference/placement.ts';
 import { datumWarning, referenceFromAnswer, toLonLat } from '../reference/referenceSystem.ts';
 import type { GeometryRepair, ImportQuestion, ImportWarning, ReadOptions, ReferenceSystem, VectorLayer, VectorUnderstood } from '../understood.ts';
@@ -40,6 +41,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const placement = reference === null ? null : checkPlacement(swapIf(outline, options), reference, options);
   if (reference === null) questions.push(referenceQuestion(outline, options.estateLonLat ?? null, whyNoReference));
   else if (swapped === null) questions.push(...(placement?.questions ?? []));
+  const sample = evenly(cleaned.flatMap(({ features }) => features.flatMap(({ geometry }) => someOf(geometry))).map((position) => (swapped === null ? swapPair(position, options) : position)));
   warnings.push(...(placement?.warnings ?? []), ...noteWarnings(notes));
   const datum = reference === null ? null : datumWarning(reference);
   if (datum !== null) warnings.push(datum);
@@ -48,7 +50,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const out: VectorLayer[] = [];
   for (const layer of cleaned) out.push(await finishLayer(layer, { reference: usable, options, warnings, repairs }));
   warnings.push(...repairs.map(repairWarning));
-  return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions, warnings };
+  return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions: withSample(questions, sample, reference), warnings };
 }
 
 interface CleanLayer {
@@ -78,6 +80,13 @@ function boxOf(layers: readonly CleanLayer[]): [number, number][] | null {
   }
   if (vertices > limits.vertices) throw new ImportProblem({ code: 'too-large', fact: `Its shapes have ${vertices} corners; ${limits.vertices} is the most.`, remedy: 'Simplify it, or cut out the part around the estate.', params: { vertices } });
   return vertices === 0 ? null : [[west, south], [east, south], [east, north], [west, north], [west, south]];
+}
+
+/** At most a few corners of each shape. */
+function someOf(geometry: Geometry | null): [number, number][] {
+  const corners: [number, number][] = [];
+  eachPosition(geometry, ([x, y]) => corners.push([x!, y!]));
+  return evenly(corners, 60);
 }
 
 interface LayerContext {

@@ -1,3 +1,4 @@
+import type { ImportQuestion, ImportWarning, ReferenceSystem } from '../understood.ts';
 import type { Geometry } from 'geojson';
 
 /** A layer as a format's reader finds it, in the coordinates of the file. */
@@ -9,4 +10,14 @@ export interface RawLayer {
 export interface RawFeature {
   geometry: Geometry | null;
   properties: Readonly<Record<string, unknown>>;
+}
+
+/** What a reader made of a file before its shapes are judged. */
+export interface LayersRead {
+  layers: readonly RawLayer[];
+  reference: ReferenceSystem | null;
+  /** Why the system is missing, as a sentence. */
+  whyNoReference: string;
+  warnings: ImportWarning[];
+  questions?: ImportQuestion[];
 }

@@ -19,18 +19,39 @@ export function readGeoJson(text: string, layerName: string): GeoJsonReading {
   checkDepth(text);
   const root = parse(text);
   const features = featuresOf(root);
-  if (features === null) throw new ImportProblem({ code: 'wrong-type', fact: 'It is JSON, but not GeoJSON.', remedy: 'Export the outlines as GeoJSON (a FeatureCollection).' });
+  if (features === null) throw new ImportProblem({ code: 'wrong-type', fact: `It is ${kindOf(root)}, not GeoJSON.`, remedy: 'Export the outlines as GeoJSON (a FeatureCollection).' });
   const warnings: ImportWarning[] = [];
   const { reference, why } = referenceOf(root as Record<string, unknown>, features, warnings);
   return { layers: [{ name: layerName, features }], reference, whyNoReference: why, warnings };
+}
+
+/** Families of JSON that people take for GeoJSON. */
+function kindOf(root: unknown): string {
+  if (!isObject(root)) return 'JSON';
+  if (root['type'] === 'Topology') return 'TopoJSON';
+  return 'geometryType' in root || 'spatialReference' in root ? 'EsriJSON' : 'JSON';
 }
 
 function parse(text: string): unknown {
   try {
     return JSON.parse(text.replace(/^\uFEFF/, ''));
   } catch (error) {
+    const sequence = featureSequence(text);
+    if (sequence !== null) return sequence;
     const detail = error instanceof Error ? error.message.slice(0, 120) : '';
     throw new ImportProblem({ code: 'damaged', fact: `It is not valid JSON (${detail}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { detail }, cause: error });
+  }
+}
+
+/** A feature a line, with or without record separators (GeoJSON text sequences, RFC 8142); null for anything else. */
+function featureSequence(text: string): unknown {
+  const lines = text.replaceAll('\u001e', '').split(/\r\n|\n|\r/).filter((line) => line.trim() !== '');
+  if (lines.length < (text.includes('\u001e') ? 1 : 2)) return null;
+  try {
+    const features = lines.map((line): unknown => JSON.parse(line));
+    return features.every((feature) => isObject(feature) && feature['type'] === 'Feature') ? { type: 'FeatureCollection', features } : null;
+  } catch {
+    return null;
   }
 }
 

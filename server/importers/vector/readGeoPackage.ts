@@ -20,7 +20,7 @@ export interface GeoPackageReading {
 export async function readGeoPackage(bytes: Uint8Array, wanted: string | undefined): Promise<GeoPackageReading> {
   const database = await openDatabaseFile(bytes);
   try {
-    const named = featureTables(database);
+    const { stored: named, skipped } = featureTables(database);
     const chosen = named.find(({ name }) => name === wanted);
     const readings = (chosen === undefined ? named : [chosen]).map((table) => readTable(database, table));
     const [first] = readings;
@@ -31,10 +31,15 @@ export async function readGeoPackage(bytes: Uint8Array, wanted: string | undefin
     }
     // Layers in different systems cannot share one answer: the question about the layer comes first.
     const same = readings.filter(({ reference }) => reference?.definition === first!.reference?.definition);
-    return { layers: same.map(({ layer }) => layer), reference: first!.reference, whyNoReference: first!.whyNoReference, warnings: readings.flatMap(({ warnings }) => warnings), questions };
+    return { layers: same.map(({ layer }) => layer), reference: first!.reference, whyNoReference: first!.whyNoReference, warnings: [...readings.flatMap(({ warnings }) => warnings), ...skipped.map(viewWarning)], questions };
   } finally {
     database.close();
   }
+}
+
+function viewWarning(layer: string): ImportWarning {
+  const name = layer.slice(0, 60);
+  return { code: 'view-layer', text: `Its layer "${name}" is a view, which is not run for safety and not offered. Save it as a layer of its own if you need it.`, params: { layer: name } };
 }
 
 interface FeatureTable {
@@ -43,7 +48,7 @@ interface FeatureTable {
   systemId: number;
 }
 
-function featureTables(database: Database): FeatureTable[] {
+function featureTables(database: Database): { stored: FeatureTable[]; skipped: string[] } {
   const kinds = new Map(rowsOf(database, "select name, type, sql from sqlite_master where type in ('table', 'view')").map(([name, type, sql]) => [String(name), { isTable: type === 'table' && !/^\s*create\s+virtual/i.test(String(sql)) }]));
   const own = ['gpkg_contents', 'gpkg_geometry_columns', 'gpkg_spatial_ref_sys'];
   if (!own.every((name) => kinds.get(name)?.isTable)) throw new ImportProblem({ code: 'wrong-type', fact: 'It is a database, but not a GeoPackage: the tables that name its layers are missing.', remedy: 'Export the layer as GeoPackage, zipped shapefile or GeoJSON.' });
@@ -52,8 +57,9 @@ function featureTables(database: Database): FeatureTable[] {
   if (tables.length === 0) throw new ImportProblem({ code: 'no-layer', fact: 'It holds no layer of shapes, only pictures or tables.', remedy: 'Export the layer with its shapes.' });
   // A view computes whatever its author wrote, for as long as that takes: only stored shapes are read.
   const stored = tables.filter(({ name }) => kinds.get(name)?.isTable);
+  const skipped = tables.filter(({ name }) => kinds.has(name) && !kinds.get(name)!.isTable).map(({ name }) => name);
   if (stored.length === 0) throw new ImportProblem({ code: 'no-layer', fact: `Its layer "${tables[0]!.name.slice(0, 60)}" is ${kinds.has(tables[0]!.name) ? 'a view, which is not run for safety' : 'named, but not in the file'}.`, remedy: 'Save the layer as one of its own and send that.', params: { layer: tables[0]!.name.slice(0, 60) } });
-  return stored;
+  return { stored, skipped };
 }
 
 interface TableReading {
@@ -70,14 +76,20 @@ function readTable(database: Database, { name, geometryColumn, systemId }: Featu
   const quoted = (word: string) => `"${word.replaceAll('"', '""')}"`;
   const rows = rowsOf(database, `select ${columns.map(quoted).join(', ')} from ${quoted(name)} limit ${limits.features + 1}`);
   const lost = { curved: 0, damaged: 0 };
-  const features = rows.map((row): RawFeature => ({
-    geometry: row[at] instanceof Uint8Array ? shapeOf(row[at], lost) : null,
-    properties: Object.fromEntries(columns.flatMap((column, index) => (index === at || row[index] instanceof Uint8Array ? [] : [[column, row[index]]]))),
-  }));
+  const features = rows.flatMap((row): RawFeature[] => {
+    const properties = Object.fromEntries(columns.flatMap((column, index) => (index === at || row[index] instanceof Uint8Array ? [] : [[column, row[index]]])));
+    return flat(row[at] instanceof Uint8Array ? shapeOf(row[at], lost) : null).map((geometry) => ({ geometry, properties }));
+  });
+  if (rows.length > 0 && lost.curved === rows.length) throw new ImportProblem({ code: 'bad-geometry', fact: `All shapes of its layer "${name.slice(0, 60)}" have curved sides, which are not read.`, remedy: 'Turn curves into straight pieces (segmentize, linearize) and export the layer again.', params: { layer: name.slice(0, 60) } });
   const warnings: ImportWarning[] = [];
   if (lost.curved > 0) warnings.push({ code: 'curved-shapes', text: `In "${name}", ${lost.curved} ${lost.curved === 1 ? 'shape has' : 'shapes have'} curved sides, which are not read.`, params: { layer: name, count: lost.curved } });
   if (lost.damaged > 0) warnings.push({ code: 'damaged-shapes', text: `In "${name}", ${lost.damaged} of ${rows.length} shapes are damaged and left out.`, params: { layer: name, count: lost.damaged } });
   return { layer: { name, features }, warnings, ...systemOf(database, systemId) };
+}
+
+/** Members of a collection one by one. */
+function flat(geometry: Geometry | null): (Geometry | null)[] {
+  return geometry?.type === 'GeometryCollection' ? geometry.geometries.flatMap(flat) : [geometry];
 }
 
 const envelopeBytes = [0, 32, 48, 48, 64];

@@ -2,7 +2,8 @@ import type { Geometry, Position } from 'geojson';
 
 /**
  * Shapes as databases store them: well-known binary of OGC 06-103r4 with ISO type numbers, heights and measures left out.
- * Throws RangeError where the bytes end too early or a count cannot be; null for curves, which have no straight corners.
+ * Curved kinds whose pieces are all straight are read as what they are. Throws RangeError where the bytes end too early or a
+ * count cannot be; null for true curves, which have no straight corners.
  */
 export function readWellKnownBinary(bytes: Uint8Array): Geometry | null {
   return geometryAt({ view: new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength), at: 0, depth: 0 });
@@ -15,7 +16,7 @@ interface Cursor {
 }
 
 const deepest = 8;
-const parts = { 4: 'MultiPoint', 5: 'MultiLineString', 6: 'MultiPolygon', 7: 'GeometryCollection' } as const;
+const parts = { 4: 'MultiPoint', 5: 'MultiLineString', 6: 'MultiPolygon', 7: 'GeometryCollection', 10: 'Polygon', 11: 'MultiLineString', 12: 'MultiPolygon' } as const;
 
 function geometryAt(cursor: Cursor): Geometry | null {
   if (cursor.depth > deepest) throw new RangeError('nested too deep');
@@ -25,7 +26,7 @@ function geometryAt(cursor: Cursor): Geometry | null {
   const [type, extra] = [code % 1000, Math.floor(code / 1000)];
   // 1000 heights, 2000 measures, 3000 both.
   const shape = { isLittle, numbers: [2, 3, 3, 4][extra] ?? 0 };
-  if (shape.numbers === 0 || type < 1 || type > 7) return null;
+  if (shape.numbers === 0 || (type > 3 && !(type in parts)) || type < 1) return null;
   if (type === 1) {
     const position = positionAt(cursor, shape);
     return position.every(Number.isNaN) ? { type: 'Point', coordinates: [] } : { type: 'Point', coordinates: position };

@@ -11,7 +11,19 @@ const lyingShape = (): Uint8Array => {
   new DataView(bytes.buffer).setUint32(17, 4_000_000_000, true);
   return bytes;
 };
-const curve = (): Uint8Array => Uint8Array.of(0x47, 0x50, 0, 1, 0xe6, 0x10, 0, 0, 1, 10, 0, 0, 0, 0, 0, 0, 0);
+/** A curve polygon of one ring, which is an arc. */
+const curve = (): Uint8Array => Uint8Array.of(0x47, 0x50, 0, 1, 0xe6, 0x10, 0, 0, 1, 10, 0, 0, 0, 1, 0, 0, 0, 1, 8, 0, 0, 0, 0, 0, 0, 0);
+/** The square as a curve polygon whose ring is a plain line, as some programs save every polygon. */
+const straightCurve = (): Uint8Array => {
+  const plain = shape([squareLonLat], { srsId: 4326, envelope: 0, bigEndian: false });
+  return Uint8Array.from([...plain.subarray(0, 8), 1, 10, 0, 0, 0, 1, 0, 0, 0, 1, 2, 0, 0, 0, ...plain.subarray(17)]);
+};
+/** The square in a collection. */
+const gathered = (): Uint8Array => {
+  const plain = shape([squareLonLat], { srsId: 4326, envelope: 0, bigEndian: false });
+  return Uint8Array.from([...plain.subarray(0, 8), 1, 7, 0, 0, 0, 1, 0, 0, 0, ...plain.subarray(8)]);
+};
+const only = (blob: () => Uint8Array) => made({ layers: [soil({ rows: [] })], then: (database) => database.run('insert into soil values (9, ?, null, null)', [blob()]) });
 
 export const databaseCases: readonly CorpusCase[] = [
   file('a square in degrees', made(), accepted()),
@@ -32,6 +44,14 @@ export const databaseCases: readonly CorpusCase[] = [
   file('degrees named as metres', made({ layers: [soil({ srsId: 32631 })] }), question('reference-system', ['4326'])),
   file('a damaged shape beside a good one', made({ then: (database) => database.run('insert into soil values (9, ?, null, null)', [lyingShape()]) }), accepted('damaged-shapes', 'empty-shapes')),
   file('a shape of curves beside a good one', made({ then: (database) => database.run('insert into soil values (9, ?, null, null)', [curve()]) }), accepted('curved-shapes', 'empty-shapes')),
+  file('a curve polygon of straight sides', only(straightCurve), accepted()),
+  file('a shape in a collection', only(gathered), accepted()),
+  file('nothing but curves', only(curve), refused('bad-geometry', /curved sides/)),
+  file('a view beside a layer', made({ then: (database) => {
+    database.run('create view shown as select * from soil');
+    database.run("insert into gpkg_contents values ('shown', 'features', 'shown', 4326)");
+    database.run("insert into gpkg_geometry_columns values ('shown', 'geom', 'POLYGON', 4326, 0, 0)");
+  } }), accepted('view-layer')),
   file('no rows', made({ layers: [soil({ rows: [] })] }), refused('no-layer', /no shapes/)),
   file('only shapes without corners', made({ layers: [soil({ rows: [{ rings: null }] })] }), refused('no-layer', /usable coordinates/)),
   file('only pictures', made({ layers: [], then: (database) => database.run("insert into gpkg_contents values ('tiles', 'tiles', 'tiles', 4326)") }), refused('no-layer', /no layer of shapes/)),

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { cellNumber, findDecimalMark } from '../../../shared/importing/cellNumbers.ts';
+import { cellNumber, columnMark, findDecimalMark } from '../../../shared/importing/cellNumbers.ts';
 import { readAngle } from '../../../shared/importing/degrees.ts';
 import { readPoints } from '../../../server/importers/points/readPoints.ts';
 import { text } from './corpus.ts';
@@ -20,6 +20,11 @@ describe('numbers in cells', () => {
     ['error', '.', NaN, ''],
     ['=1+1', '.', NaN, ''],
     ['0', '.', 0, ''],
+    // A comma before other than three digits is a decimal in any table; thousands are parted by apostrophes and thin spaces too.
+    ['12,5', '.', 12.5, ''],
+    ['44,7031', '.', 44.7031, ''],
+    ["4'950'010.2", '.', 4950010.2, ''],
+    ['4\u202f950\u00a0010,2', ',', 4950010.2, ''],
   ] as const)('"%s" with mark "%s" is %f', (cell, mark, value, unit) => {
     expect(cellNumber(cell, mark)).toEqual({ value, unit });
   });
@@ -29,6 +34,47 @@ describe('numbers in cells', () => {
     expect(findDecimalMark(['1,234', '2,345'], ';')).toEqual({ mark: ',', unsure: true });
     expect(findDecimalMark(['12.5', '1,234'], ';')).toEqual({ mark: '.', unsure: false });
     expect(findDecimalMark(['1.234,5'], ';')).toEqual({ mark: ',', unsure: false });
+  });
+});
+
+describe('a table that mixes decimal marks', () => {
+  it('is read column by column', async () => {
+    // Three columns with commas outvote two with points: 3.001 is no three thousand and one.
+    const rows = Array.from({ length: 6 }, (_, row) => `44.703${row};3.00${row + 1};${10 + row},5;${row},25;7,1${row}`);
+    const { pointsLonLat, numbers } = await read(['lat;lon;ec;top;deep', ...rows].join('\n'));
+    expect(pointsLonLat[0]).toEqual([3.001, 44.703]);
+    expect([...numbers.get('ec')!]).toEqual([10.5, 11.5, 12.5, 13.5, 14.5, 15.5]);
+    expect(numbers.get('top')![1]).toBe(1.25);
+  });
+
+  it('leaves a column that does not tell to the rest of the table', () => {
+    expect(columnMark(['1.234', '2.345'], ',')).toBe(',');
+    expect(columnMark(['1.234', '2.34'], ',')).toBe('.');
+    expect(columnMark(['12,5', '1.25'], '.')).toBe('.');
+  });
+
+  it('takes what instruments write for nothing as missing, not as words', async () => {
+    const { numbers } = await read('lat,lon,ec\n44.7031,3.0011,NaN\n44.7032,3.0012,12\n44.7033,3.0013,#N/A\n44.7034,3.0014,null\n44.7035,3.0015,-inf\n44.7036,3.0016,13\n');
+    expect([...numbers.get('ec')!]).toEqual([NaN, 12, NaN, NaN, NaN, 13]);
+  });
+
+  it('does not offer as numbers what holds none', async () => {
+    const { columns, numbers } = await read('lat,lon,mixed\n44.7031,3.0011,1.5.2\n44.7032,3.0012,2\n44.7033,3.0013,a\n');
+    expect(numbers.has('mixed')).toBe(false);
+    expect(columns.find(({ name }) => name === 'mixed')!.kind).toBe('text');
+  });
+});
+
+describe('positions of a receiver', () => {
+  it('packed as degrees and minutes are unpacked, with the letters beside them', async () => {
+    // 44° 42.186' = 44 + 42.186 / 60 = 44.7031; 3° 0.066' = 3.0011.
+    const { pointsLonLat, warnings } = await read('lat,ns,lon,ew,ec\n4442.186,N,00300.066,E,5\n4442.192,N,00300.072,E,6\n');
+    expect(pointsLonLat[0]![0]).toBeCloseTo(3.0011, 9);
+    expect(pointsLonLat[0]![1]).toBeCloseTo(44.7031, 9);
+    expect(warnings.map(({ code }) => code)).toContain('degrees-minutes');
+    const south = await read('lat,ns,lon,ew,ec\n3334.5,S,07052.2,W,5\n3334.6,S,07052.3,W,6\n');
+    expect(south.pointsLonLat[0]![0]).toBeCloseTo(-(70 + 52.2 / 60), 9);
+    expect(south.pointsLonLat[0]![1]).toBeCloseTo(-(33 + 34.5 / 60), 9);
   });
 });
 

@@ -1,0 +1,19 @@
+import { ImportProblem } from '../importProblem.ts';
+import { referenceFromEpsg } from '../reference/referenceSystem.ts';
+import type { Sniffed } from '../sniffFormat.ts';
+import type { LayersRead } from './rawLayer.ts';
+import { readGeoJson } from './readGeoJson.ts';
+import { readGpx } from './readGpx.ts';
+import { readKml } from './readKml.ts';
+
+/** GeoJSON, KML or GPX by what the contents were told to be. Throws ImportProblem for anything else. */
+export function readText({ format, foreignName }: Sniffed, text: () => string, layerName: string): LayersRead {
+  if (format === 'geojson') return readGeoJson(text(), layerName);
+  const wgs84 = { reference: referenceFromEpsg(4326, 'format'), whyNoReference: '' };
+  if (format === 'kml') return { ...readKml(text(), layerName), ...wgs84 };
+  if (format === 'gpx') return { ...readGpx(text(), layerName), ...wgs84 };
+  if (format === 'shapefile-part') throw new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.' });
+  if (format === 'empty') throw new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.' });
+  const found = foreignName ?? (format === 'geotiff' ? 'a raster picture (TIFF)' : format === 'table' ? 'a table of points' : 'XML of another kind');
+  throw new ImportProblem({ code: 'wrong-type', fact: `It is ${found}, not a file of outlines.`, remedy: 'Send a zipped shapefile, GeoPackage, GeoJSON, KML, KMZ or GPX.', params: { found } });
+}

@@ -3,6 +3,7 @@ import type { LonLat } from '../../shared/geo/coordinates.ts';
 import type { RasterReadOptions } from '../importers/raster/describeRaster.ts';
 import type { Understood } from '../importers/formats.ts';
 import type { ImportAnswers as ReaderAnswers, ImportQuestion as ReaderQuestion, ImportWarning } from '../importers/understood.ts';
+import { evenly, rounded } from '../importers/reference/ghostSample.ts';
 import type { SourceFile } from './placed.ts';
 
 /** Options of a reader from what people answered so far. */
@@ -38,13 +39,14 @@ export function summaryOf(understood: Understood): UnderstoodFile {
   if (understood.kind === 'points') {
     const { columns, position, setAside, pointsLonLat } = understood;
     return {
-      kind: 'points', ...base, outlineLonLat: boxOf(pointsLonLat), count: pointsLonLat.length, columns: columns.map(copyField),
+      kind: 'points', ...base, outlineLonLat: boxOf(pointsLonLat), sampleLonLat: evenly(pointsLonLat).flatMap((position) => pairs(rounded(position))!), count: pointsLonLat.length, columns: columns.map(copyField),
       position: position === null ? null : { first: position.first, second: position.second },
       setAside: setAside.map(({ reason, count }) => ({ reason, count })),
     };
   }
   const layers = understood.layers.map((layer) => ({ name: layer.name, geometryKinds: [...layer.geometryKinds], count: layer.count, fields: layer.fields.map(copyField) }));
-  return { kind: 'vector', ...base, outlineLonLat: boxOf(understood.layers.flatMap((layer) => layer.featuresLonLat.features.flatMap((feature) => (feature.geometry === null ? [] : positionsOf(feature.geometry))))), layers };
+  const positions = understood.layers.flatMap((layer) => layer.featuresLonLat.features.flatMap((feature) => (feature.geometry === null ? [] : positionsOf(feature.geometry))));
+  return { kind: 'vector', ...base, outlineLonLat: boxOf(positions), sampleLonLat: evenly(positions).flatMap(([lon, lat]) => pairs(rounded([lon!, lat!]))!), layers };
 }
 
 const answerOf: Record<ReaderQuestion['code'], readonly (keyof ImportAnswers)[]> = {
@@ -68,7 +70,7 @@ export function readerQuestionsOf(question: ReaderQuestion, answers: ImportAnswe
       code,
       kind: 'choice',
       reason: question.text,
-      choices: question.choices.map((choice) => ({ value: typedValue(code, choice.value), label: choice.label, outlineLonLat: pairs(choice.outlineLonLat ?? null), distanceKm: choice.distanceKm ?? null })),
+      choices: question.choices.map((choice) => ({ value: typedValue(code, choice.value), label: choice.label, outlineLonLat: pairs(choice.outlineLonLat ?? null), ...(choice.sampleLonLat ? { sampleLonLat: pairs(choice.sampleLonLat)! } : {}), distanceKm: choice.distanceKm ?? null })),
       suggestion: null,
       answer: answer ?? null,
       answered: answer !== undefined && !checkedByReader.has(code),

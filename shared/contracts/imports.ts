@@ -74,6 +74,8 @@ export const questionChoice = z.object({
   /** As the file or the reference system names it; null when the screen has words for the value. */
   label: z.string().nullable(),
   outlineLonLat: z.array(lonLat).nullable(),
+  /** Some positions of the file as this answer would place them; pictures have none. */
+  sampleLonLat: z.array(lonLat).optional(),
   distanceKm: z.number().nullable(),
 });
 export type QuestionChoice = z.infer<typeof questionChoice>;
@@ -97,7 +99,7 @@ export type ImportNote = z.infer<typeof importNote>;
 const field = z.object({ name: z.string(), kind: z.string(), examples: z.array(z.string()), distinct: z.number(), missing: z.number() });
 export type FieldSummary = z.infer<typeof field>;
 
-const placed = { reference: z.string().nullable(), epsg: z.number().nullable(), outlineLonLat: z.array(lonLat).nullable() };
+const placed = { reference: z.string().nullable(), epsg: z.number().nullable(), outlineLonLat: z.array(lonLat).nullable(), sampleLonLat: z.array(lonLat).optional() };
 
 /** What a reader made of a file, without its contents. */
 export const understoodFile = z.discriminatedUnion('kind', [

@@ -30,22 +30,35 @@ export const useImportsStore = defineStore('imports', () => {
   const sending = shallowRef<readonly Sending[]>([]);
   let last = 0;
   let changes = 0;
+  let linesOf: string | null = null;
+  /** When each line was last known from an answer: what was asked before that is older news. */
+  const known = new Map<string, number>();
+  const dismissed = new Set<string>();
   const base = (estateId: string) => `/api/estates/${estateId}/imports`;
 
   /** Asks again when a line came or went meanwhile: the list on its way does not know of it, and would take it off the screen. */
   async function load(estateId: string): Promise<void> {
+    if (linesOf !== estateId) [lines.value, linesOf] = [[], estateId];
     const before = changes;
     const { items } = await http.get<{ items: ImportView[] }>(base(estateId));
+    if (linesOf !== estateId) return;
     if (changes !== before) return load(estateId);
     lines.value = items;
   }
 
-  /** Puts a line in its place; a new one comes first. */
+  /** Puts a line in its place; a new one comes first. One that somebody took off meanwhile stays off. */
   function keep(line: ImportView): ImportView {
+    if (dismissed.has(line.id)) return line;
     changes += 1;
-    const known = lines.value.some((each) => each.id === line.id);
-    lines.value = known ? lines.value.map((each) => (each.id === line.id ? line : each)) : [line, ...lines.value];
+    known.set(line.id, changes);
+    const isThere = lines.value.some((each) => each.id === line.id);
+    lines.value = isThere ? lines.value.map((each) => (each.id === line.id ? line : each)) : [line, ...lines.value];
     return line;
+  }
+
+  /** A line as it was when it was asked for; an answer that was kept since then is newer. */
+  function keepUnlessOlder(line: ImportView, askedAt: number): ImportView {
+    return (known.get(line.id) ?? 0) > askedAt ? line : keep(line);
   }
 
   function patchSending(id: number, change: Partial<Sending>): void {
@@ -136,8 +149,20 @@ export const useImportsStore = defineStore('imports', () => {
     return (items ?? []).map(keep);
   }
 
-  const refresh = async (estateId: string, importId: string) => keep(await http.get<ImportView>(`${base(estateId)}/${importId}`));
-  const answer = async (estateId: string, importId: string, answers: ImportAnswers) => keep(await http.patch<ImportView>(`${base(estateId)}/${importId}`, { answers }));
+  async function refresh(estateId: string, importId: string): Promise<ImportView> {
+    const askedAt = changes;
+    return keepUnlessOlder(await http.get<ImportView>(`${base(estateId)}/${importId}`), askedAt);
+  }
+
+  /** A line that somebody else brought further meanwhile is shown as it is now, with the reason why the answer came too late. */
+  async function answer(estateId: string, importId: string, answers: ImportAnswers): Promise<ImportView> {
+    try {
+      return keep(await http.patch<ImportView>(`${base(estateId)}/${importId}`, { answers }));
+    } catch (error) {
+      if (error instanceof HttpProblem && error.status === 409) await refresh(estateId, importId).catch(() => undefined);
+      throw error;
+    }
+  }
 
   async function takeOutlines(estateId: string, importId: string, taken: Taken): Promise<{ id: string; name: string }[]> {
     const { items } = await http.post<{ items: { id: string; name: string }[] }>(`${base(estateId)}/${importId}/blocks`, taken);
@@ -147,6 +172,7 @@ export const useImportsStore = defineStore('imports', () => {
 
   async function dismiss(estateId: string, importId: string): Promise<void> {
     await http.delete(`${base(estateId)}/${importId}`);
+    dismissed.add(importId);
     changes += 1;
     lines.value = lines.value.filter((each) => each.id !== importId);
   }

@@ -19,7 +19,8 @@ function reply(response: ServerResponse, status: number, body: unknown): void {
 
 function serve(request: IncomingMessage, response: ServerResponse): void {
   if (request.method === 'GET') {
-    const body = { items: [...stored] };
+    const one = stored.find(({ id }) => request.url!.endsWith(`/${id}`));
+    const body = one ? { ...one } : { items: request.url!.includes('/estates/2/') ? [{ id: 'other', fileName: 'other.zip', state: 'ready' }] : [...stored] };
     if (isHolding) held.push(() => reply(response, 200, body));
     else reply(response, 200, body);
     return;
@@ -29,6 +30,12 @@ function serve(request: IncomingMessage, response: ServerResponse): void {
       stored = stored.filter(({ id }) => !request.url!.endsWith(id));
       response.writeHead(204).end();
       return;
+    }
+    if (request.method === 'PATCH') {
+      const line = stored.find(({ id }) => request.url!.endsWith(`/${id}`))!;
+      if (line.state === 'done') return reply(response, 409, { status: 409, code: 'importDone', detail: 'It has been taken over already.' });
+      line.state = 'ready';
+      return reply(response, 200, { ...line });
     }
     const line = { id: 'holiday', fileName: 'holiday.tif', state: 'refused' };
     stored = [line, ...stored];
@@ -76,6 +83,57 @@ describe('a list of imports that comes late', () => {
     await imports.dismiss('1', 'soil');
     await letGo();
     expect(names(imports)).toEqual([]);
+  });
+});
+
+describe('a line that comes late', () => {
+  const states = (imports: ReturnType<typeof useImportsStore>) => imports.lines.map(({ id, state }) => [id, state]);
+
+  it('does not undo an answer that was given after it was asked for', async () => {
+    const imports = useImportsStore();
+    isHolding = false;
+    stored = [{ id: 'soil', fileName: 'soil.zip', state: 'asks' }];
+    await imports.load('1');
+    isHolding = true;
+    const asking = imports.refresh('1', 'soil');
+    await expect.poll(() => held.length).toBe(1);
+    await imports.answer('1', 'soil', { purpose: 'soil' });
+    held.forEach((answer) => answer());
+    await asking;
+    expect(states(imports)).toEqual([['soil', 'ready']]);
+  });
+
+  it('does not bring itself back after it was dismissed', async () => {
+    const imports = useImportsStore();
+    isHolding = false;
+    await imports.load('1');
+    isHolding = true;
+    const asking = imports.refresh('1', 'soil');
+    await expect.poll(() => held.length).toBe(1);
+    await imports.dismiss('1', 'soil');
+    held.forEach((answer) => answer());
+    await asking;
+    expect(states(imports)).toEqual([]);
+  });
+
+  it('is shown as it is now when an answer comes after somebody else’s', async () => {
+    const imports = useImportsStore();
+    isHolding = false;
+    stored = [{ id: 'soil', fileName: 'soil.zip', state: 'asks' }];
+    await imports.load('1');
+    stored = [{ id: 'soil', fileName: 'soil.zip', state: 'done' }];
+    await expect(imports.answer('1', 'soil', { purpose: 'soil' })).rejects.toMatchObject({ status: 409 });
+    expect(states(imports)).toEqual([['soil', 'done']]);
+  });
+
+  it('of another estate is not shown', async () => {
+    const imports = useImportsStore();
+    const letGo = await loadingSlowly(imports);
+    isHolding = false;
+    const second = imports.load('2');
+    await second;
+    await letGo();
+    expect(names(imports)).toEqual(['other.zip']);
   });
 });
 

@@ -54,7 +54,12 @@ export function rowEndFeatures(rows: readonly MapRow[]): FeatureCollection {
 }
 
 export function ghostFeatures(ghosts: readonly MapGhost[]): FeatureCollection {
-  return collection(ghosts.map((ghost) => feature(ghost.geometry, { id: ghost.id, chosen: ghost.chosen })));
+  return collection(
+    ghosts.flatMap(({ id, geometry, chosen, points = [] }) => [
+      feature(geometry, { id, chosen }),
+      ...(points.length === 0 ? [] : [feature({ type: 'MultiPoint', coordinates: points.map((each) => [...each]) }, { id, chosen })]),
+    ]),
+  );
 }
 
 export function ghostFlagFeatures(ghosts: readonly MapGhost[], colours: { chosen: string; other: string }): FeatureCollection {

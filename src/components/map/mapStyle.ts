@@ -54,6 +54,7 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'block-line', type: 'line', source: 'blocks', layout: { 'line-join': 'miter' }, paint: { 'line-color': ['case', ['get', 'restricted'], ink.brick, ink.zoneLine], 'line-width': ['case', ['any', chosen, ['get', 'restricted']], 3.5, 2] } },
     { id: 'ghost-line-other', type: 'line', source: 'ghosts', filter: ['!', ['get', 'chosen']], paint: { 'line-color': ink.amber, 'line-width': 1.5, 'line-dasharray': [1.33, 2.67] } },
     { id: 'ghost-line', type: 'line', source: 'ghosts', filter: ['get', 'chosen'], paint: { 'line-color': ink.sky, 'line-width': 2, 'line-dasharray': [4, 2] } },
+    { id: 'ghost-dots', type: 'circle', source: 'ghosts', filter: ['in', ['geometry-type'], ['literal', ['Point', 'MultiPoint']]], paint: { 'circle-radius': 2.5, 'circle-color': ['case', ['get', 'chosen'], ink.sky, ink.amber], 'circle-stroke-color': ink.ground, 'circle-stroke-width': 1 } },
     { id: 'ghost-flags', type: 'symbol', source: 'ghostFlags', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-anchor': 'top-left' } },
     { id: 'route-edge', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ground, 'line-width': 6 } },
     { id: 'route', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ink, 'line-width': 2.5 } },

@@ -40,6 +40,8 @@ export interface MapGhost {
   readonly letter: string;
   readonly geometry: AreaGeometry | LineString;
   readonly chosen: boolean;
+  /** Positions that belong to it, drawn as dots. */
+  readonly points?: readonly (readonly [number, number])[];
 }
 
 export interface MapPoint {

@@ -41,7 +41,7 @@ export interface ZoneArguments {
 }
 
 export const usage =
-  'zone --block FILE --layer TYPE=FILE[#option=value,…] [--layer …] [--readings FILE] [--zones advise|1…6] [--layer-weights advise|equal] [--cell METRES] [--min-patch-ha HA] [--smooth METRES] [--standardise plain|robust] [--components] [--seed N] --out FILE [--report FILE]';
+  'zone --block FILE --layer TYPE=FILE[#option=value,…] [--layer …] (points: #value=COLUMN,surface=distance|kriging) [--readings FILE] [--zones advise|1…6] [--layer-weights advise|equal] [--cell METRES] [--min-patch-ha HA] [--smooth METRES] [--standardise plain|robust] [--components] [--seed N] --out FILE [--report FILE]';
 
 const layerKinds: Record<string, Pick<LayerArgument, 'type' | 'purpose' | 'terrain'>> = {
   vigour: { type: 'vigour', purpose: 'vigour', terrain: null },

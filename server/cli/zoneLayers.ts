@@ -122,7 +122,9 @@ async function spread(grid: Grid, { lonLat, value }: { lonLat: readonly LonLat[]
   if (!surfaces.some((known) => known === surface)) throw new BadInput(`--layer ${argument.id}: surface=${surface} cannot be used; give ${surfaces.join(' or ')}.`);
   const cells = surface === 'kriging' ? (await import('../../shared/analysis/surveySurface.ts')).surveySurface(grid, kept).cells : inverseDistance(grid, kept);
   if (cells.every((each) => Number.isNaN(each))) throw new BadInput(`${argument.path}: none of its ${lonLat.length} points lies within 40 m of the block; check that it is the right file and its positions.`);
-  return { cells, kind: 'number', notes: setAside.filter(({ count }) => count > 0).map(({ reason, count }) => `${count} points set aside: ${reason}.`) };
+  const notes = setAside.filter(({ count }) => count > 0).map(({ reason, count }) => `${count} points set aside: ${reason}.`);
+  if (argument.options.surface === undefined) notes.push(`The points of ${argument.id} are spread by inverse distance, which is quick; the application uses kriging for an imported survey of a hundred places or more, as #surface=kriging does here.`);
+  return { cells, kind: 'number', notes };
 }
 
 async function fromShapes({ grid, middleLonLat }: Block, argument: LayerArgument): Promise<Values> {

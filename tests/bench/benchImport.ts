@@ -24,6 +24,7 @@ const encodings: Readonly<Record<string, readonly string[]>> = {
   'float32, deflate, predictor 3': ['-ot', 'Float32', '-co', 'TILED=YES', '-co', 'COMPRESS=DEFLATE', '-co', 'PREDICTOR=3'],
   'deflate, predictor 2, bands apart': ['-co', 'TILED=YES', '-co', 'COMPRESS=DEFLATE', '-co', 'PREDICTOR=2', '-co', 'INTERLEAVE=BAND'],
   'uncompressed, tiles': ['-co', 'TILED=YES'],
+  'cloud-optimised, deflate, predictor 2': ['-of', 'COG', '-co', 'COMPRESS=DEFLATE', '-co', 'PREDICTOR=2'],
 };
 
 export async function benchImport(options: ImportBenchOptions): Promise<unknown[]> {

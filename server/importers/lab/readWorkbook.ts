@@ -4,6 +4,7 @@ import { checkEntries, readEntries } from '../archive/zipDirectory.ts';
 import type { ByteSource } from '../byteSource.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { labLimits } from './labLimits.ts';
+import { sheetMarks } from './sheetMarks.ts';
 
 /** Sheets of an .xlsx workbook; formulas give the values that were stored with them. The archive is judged before anything is unpacked. */
 export async function readWorkbook(bytes: Uint8Array<ArrayBuffer>): Promise<RawSheet[]> {
@@ -14,7 +15,8 @@ export async function readWorkbook(bytes: Uint8Array<ArrayBuffer>): Promise<RawS
   if (!entries.some(({ name }) => name === 'xl/workbook.xml')) throw new ImportProblem({ code: 'wrong-type', fact: 'It is an archive, but no .xlsx workbook.', remedy: 'Send the table itself as XLSX or CSV.' });
   const sheets = await readXlsxFile(Buffer.from(bytes));
   if (sheets.length > labLimits.sheets) throw new ImportProblem({ code: 'too-large', fact: `It has ${sheets.length} sheets; ${labLimits.sheets} is the most.`, remedy: 'Send the sheet with the results alone.' });
-  return sheets.map(({ sheet, data }) => ({ name: sheet, rows: data.map((row) => row.map(cellOf)) }));
+  const marks = sheetMarks(bytes);
+  return sheets.map(({ sheet, data }) => ({ name: sheet, rows: data.map((row) => row.map(cellOf)), ...marks.get(sheet) }));
 }
 
 function cellOf(cell: unknown): RawCell {

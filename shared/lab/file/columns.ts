@@ -1,3 +1,4 @@
+import { groupBy } from '../../groupBy.ts';
 import { unitsOf } from '../units.ts';
 import { readFigure } from '../figure.ts';
 import { cellText, isBlank, looksNumeric } from './cells.ts';
@@ -73,15 +74,18 @@ function readLong(table: LabTable, { measures, wordColumn, asking }: { measures:
   if (valueColumn === undefined) return { values: [] };
   const unitColumn = others.find((column) => roles[column] === 'unit') ?? others.find((column) => column !== valueColumn && numeric(column) === 0 && table.rows.some(({ cells }) => /\/l|°|brix|ph\b/i.test(cellText(cells[column]))));
   asking.say('oneALine');
-  const words = new Set(table.rows.map(({ cells }) => cellText(cells[wordColumn])).filter((word) => word !== ''));
+  const unitOf = (cells: readonly RawCell[]): string => (unitColumn === undefined ? '' : cellText(cells[unitColumn]));
+  // One measure may stand in two units, such as acidity from two instruments: each line keeps its own.
+  const named = groupBy(table.rows.filter(({ cells }) => cellText(cells[wordColumn]) !== ''), ({ cells }) => `${cellText(cells[wordColumn])} ${unitOf(cells)}`.trim());
+  const unitsOfWord = groupBy([...named.values()], ([row]) => cellText(row!.cells[wordColumn]));
   const values: LooseValue[] = [];
-  for (const word of words) {
-    const rows = table.rows.filter(({ cells }) => cellText(cells[wordColumn]) === word);
-    const unitWord = unitColumn === undefined ? '' : cellText(rows[0]!.cells[unitColumn]);
-    const found = columnMeasure({ title: `${word} ${unitWord}`.trim(), cells: rows.map(({ cells }) => cells[valueColumn] ?? null), measures }, asking);
+  for (const [title, rows] of named) {
+    const word = cellText(rows[0]!.cells[wordColumn]);
+    const shown = unitsOfWord.get(word)!.length > 1 ? title : word;
+    const found = columnMeasure({ title, cells: rows.map(({ cells }) => cells[valueColumn] ?? null), measures }, asking);
     if (found === null) continue;
     for (const { line, cells: rowCells } of rows) {
-      if (!isBlank(rowCells[valueColumn])) values.push({ line, labelCell: rowCells[table.codeColumn] ?? null, ...found, cell: rowCells[valueColumn]!, title: word, column: valueColumn, rowCells });
+      if (!isBlank(rowCells[valueColumn])) values.push({ line, labelCell: rowCells[table.codeColumn] ?? null, ...found, cell: rowCells[valueColumn]!, title: shown, column: valueColumn, rowCells });
     }
   }
   return { values };
@@ -121,7 +125,7 @@ function withUnit({ title, cells, measures }: Column, role: { measure: string; u
   const possible = units.filter(({ id }) => fits(id));
   // Figures near 1.09 can be nothing but a gravity. Always asked: acidity, whose scales overlap, and grams a litre, which
   // may be all that is dissolved or the sugar alone.
-  if (told === null && possible.length === 1 && measure.code !== 'ta' && possible[0]!.id !== 'solidsGPerL') {
+  if (told === null && possible.length === 1 && measure.code !== 'ta' && !possible[0]!.id.endsWith('GPerL')) {
     asking.say('unitByFigures', { title, unit: possible[0]!.shown });
     return { measure: measure.code, unit: possible[0]!.id };
   }

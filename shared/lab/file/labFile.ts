@@ -6,6 +6,10 @@ export type RawCell = string | number | boolean | { readonly date: string } | nu
 export interface RawSheet {
   readonly name: string;
   readonly rows: readonly (readonly RawCell[])[];
+  /** What the spreadsheet does not show: indexes of rows and columns. */
+  readonly hidden?: { readonly rows: readonly number[]; readonly columns: readonly number[] };
+  /** Formulas whose result was not stored: the cells are empty here. */
+  readonly emptyFormulas?: number;
 }
 
 export interface RawLabFile {

@@ -1,6 +1,7 @@
 import { cellText, isBlank, labelIn, looksNumeric } from './cells.ts';
 import type { RawCell, RawLabFile, RawSheet } from './labFile.ts';
 import type { Asking } from './questions.ts';
+import { joinParts, startsOfLaterTables } from './severalTables.ts';
 import { roleOfTitle } from './titles.ts';
 
 /** A table found in a sheet: which column holds the label, what the columns are called, and the rows below. */
@@ -42,18 +43,30 @@ export function findUnlabelledTable(sheet: RawSheet, asking: Asking): LabTable |
 function tableOf(grid: readonly RawCell[][], asking: Asking, labelled: boolean): LabTable | null {
   const lines: Numbered[] = grid.map((cells, at) => ({ line: at + 1, cells })).filter(({ cells }) => cells.some((cell) => !isBlank(cell)));
   const width = Math.max(0, ...lines.map(({ cells }) => cells.length));
-  const counts = Array.from({ length: width }, (_, column) => (labelled ? lines.filter(({ cells }) => labelIn(cells[column]) !== null).length : 0));
-  const most = Math.max(0, ...counts);
+  const labelColumn = (part: readonly Numbered[]): { column: number; most: number } => {
+    const counts = Array.from({ length: width }, (_, column) => (labelled ? part.filter(({ cells }) => labelIn(cells[column]) !== null).length : 0));
+    const most = Math.max(0, ...counts);
+    return { column: counts.indexOf(most), most };
+  };
+  const { column, most } = labelColumn(lines);
   const first = most > 0 ? lines.findIndex(({ cells }) => cells.some((cell) => labelIn(cell) !== null)) : lines.findIndex(({ cells }) => cells.filter(looksNumeric).length >= 2);
   if (first < 0) return null;
   const head = headerLines(lines, first);
   const titles = titlesOf(head, width);
-  const codeColumn = !labelled ? -1 : most > 0 ? counts.indexOf(most) : askCodeColumn(titles, lines.slice(first), asking);
+  const codeColumn = !labelled ? -1 : most > 0 ? column : askCodeColumn(titles, lines.slice(first), asking);
   if (codeColumn === null) return null;
   const before = lines.slice(0, first).length - head.length;
   if (before > 0) asking.say('linesBefore', { count: before });
   if (head.length === 0) asking.say('noHeader');
-  return { codeColumn, titles, rows: lines.slice(first) };
+  const starts = most > 0 ? startsOfLaterTables(lines, first, namesMeasures) : [];
+  if (starts.length === 0) return { codeColumn, titles, rows: lines.slice(first) };
+  const parts = [first, ...starts].map((start, at) => {
+    const partHead = at === 0 ? head : headerLines(lines, start);
+    const end = starts[at] === undefined ? lines.length : starts[at] - headerLines(lines, starts[at]).length;
+    const rows = lines.slice(start, end);
+    return { titles: titlesOf(partHead, width), codeColumn: labelColumn(rows).column, rows };
+  });
+  return joinParts(parts, asking);
 }
 
 /** Rows are samples; a sheet with samples side by side is turned. */
@@ -76,7 +89,7 @@ function headerLines(lines: readonly Numbered[], first: number): Numbered[] {
     const isUnits = at === first - 1 && at > 0 && filled.every((cell) => typeof cell === 'string' && !looksNumeric(cell)) && namesMeasures(lines[at - 1]!);
     if (!isUnits && (filled.length < Math.max(2, width / 2) || filled.some((cell) => typeof cell === 'number'))) break;
     head.unshift(lines[at]!);
-    if (namesMeasures(lines[at]!)) break;
+    if (!isUnits && namesMeasures(lines[at]!)) break;
   }
   return head;
 }

@@ -1,6 +1,7 @@
 import { cellText, isBlank, labelIn } from './cells.ts';
 import type { RawCell, RawLabFile, RawSheet } from './labFile.ts';
 import type { Asking } from './questions.ts';
+import { standBelow } from './severalTables.ts';
 
 /**
  * Rows whose cells stand in the wrong place: a row that starts a cell early or late by its own label, and a
@@ -9,7 +10,7 @@ import type { Asking } from './questions.ts';
 export function mendRows(file: RawLabFile, sheet: RawSheet, asking: Asking): RawSheet | null {
   const joined = file.separator === ',' ? joinDecimals(sheet, asking) : sheet;
   if (joined === null) return null;
-  return straighten(joined, asking);
+  return straighten(standBelow(joined, asking), asking);
 }
 
 /** `TRKWMH,23,4,3,41` below three titles: whole numbers in twice as many cells as there are titles beside the label. */

@@ -2,6 +2,7 @@ import { groupBy } from '../../groupBy.ts';
 import { looseValues } from './columns.ts';
 import { plainText } from './cells.ts';
 import { readDates } from './dates.ts';
+import { settleHidden } from './hiddenCells.ts';
 import type { LabAnswers, LabEntry, LabSurroundings, RawLabFile, UnderstoodLabFile } from './labFile.ts';
 import { matchLabels } from './labels.ts';
 import { chooseSheet, findTable } from './layout.ts';
@@ -26,7 +27,7 @@ const nothing = { list: [] as LabEntry[], titles: [] as readonly string[] };
 
 function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { list: LabEntry[]; titles: readonly string[] } {
   const sheet = chooseSheet(file, asking);
-  const mended = sheet && mendRows(file, sheet, asking);
+  const mended = sheet && mendRows(file, settleHidden(sheet, asking), asking);
   const table = mended && findTable(mended, asking);
   if (!table) {
     if (asking.questions.length === 0) asking.say('noResults');

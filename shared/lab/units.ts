@@ -1,4 +1,5 @@
 import { convertAcidity } from '../cellar/acidity.ts';
+import { brixOfSugar } from '../cellar/mustSugar.ts';
 import { baumeToGravity, gravityToBrix, oechsleToGravity, solidsGPerL } from '../cellar/must.ts';
 
 /**
@@ -23,6 +24,8 @@ export const labUnits: readonly LabUnit[] = [
   // Written as 1.092, or as 1092 kg a cubic metre without the mark.
   { id: 'gravity', measure: 'brix', shown: 'SG', convert: (value) => brixOfGravity(value > 900 ? value / 1000 : value) },
   { id: 'solidsGPerL', measure: 'brix', shown: 'g/L', convert: brixOfSolids },
+  // What laboratories of wine countries write as sugar: without acids and the other solids.
+  { id: 'sugarGPerL', measure: 'brix', shown: 'g/L', convert: brixOfSugar },
   { id: 'tartaricGPerL', measure: 'ta', shown: 'g/L', convert: same },
   { id: 'tartaricGPer100mL', measure: 'ta', shown: 'g/100 mL', convert: (value) => value * 10 },
   { id: 'sulphuricGPerL', measure: 'ta', shown: 'g/L H2SO4', convert: (value) => convertAcidity(value, 'sulphuricGPerL', 'tartaricGPerL') },

@@ -205,14 +205,23 @@ describe('refractometer temperature', () => {
     expect(correctRefractometer({ brix: 22, temperatureC: 20, compensates: null })).toEqual({ kind: 'asRead', brix: 22 });
   });
 
+  // Rows of table I of OIV-MA-AS2-02 between those that the program holds.
+  it.each([[6, 10, 0.8], [7, 20, 0.82], [8, 25, 0.79], [9, 15, 0.67], [12, 20, 0.53], [13, 30, 0.5], [14, 25, 0.42], [16, 20, 0.28], [17, 10, 0.2], [17, 30, 0.22]])('takes off at %d °C and %d °Brix what the table does', (temperatureC, brix, taken) => {
+    const answer = correctRefractometer({ brix, temperatureC, compensates: false });
+    if (answer.kind !== 'corrected') throw new Error(answer.kind);
+    expect(brix - taken).toBeGreaterThanOrEqual(answer.low);
+    expect(brix - taken).toBeLessThanOrEqual(answer.high);
+  });
+
   it('raises a warm reading and lowers a cold one, as a range', () => {
-    // 0.06 to 0.09 °Brix a degree, from memory of OIV-MA-AS2-02
+    // Above 20 °C 0.06 to 0.09 °Brix a degree, from memory of OIV-MA-AS2-02.
     const warm = correctRefractometer({ brix: 22, temperatureC: 30, compensates: false });
     if (warm.kind !== 'corrected') throw new Error(warm.kind);
     expect([warm.low, warm.middle, warm.high].map((value) => Number(value.toFixed(6)))).toEqual([22.6, 22.75, 22.9]);
     const cold = correctRefractometer({ brix: 22, temperatureC: 10, compensates: false });
     if (cold.kind !== 'corrected') throw new Error(cold.kind);
-    expect([cold.low, cold.high].map((value) => Number(value.toFixed(6)))).toEqual([21.1, 21.4]);
+    // 0.65 at 20 °Brix and 0.67 at 25, by that method's table I.
+    expect([cold.low, cold.middle, cold.high].map((value) => Number(value.toFixed(3)))).toEqual([21.312, 21.342, 21.372]);
   });
 });
 

@@ -43,6 +43,9 @@ describe('units of laboratories', () => {
   it.each([
     ['gravity', 1.08, 19.3523], ['gravity', 1.09, 21.5938], ['gravity', 1.1, 23.7996], ['gravity', 1100, 23.7996], ['baume', 13.1818, 23.7996], ['baume', 11.9725, 21.5938], ['oechsle', 90, 21.5938], ['oechsle', 110, 25.9709], ['solidsGPerL', 263.75, 24],
   ])('%s %d is %d °Brix', (unit, from, brix) => expect(labUnit(unit)!.convert(from)).toBeCloseTo(brix, 3));
+  // Rows of table II of OIV-MA-AS2-02 (French order of 14 September 2011, annex IV) between those that the program holds.
+  it.each([[87.5, 10.5], [141.6, 15.5], [197.6, 20.5], [209, 21.5], [220.5, 22.5], [230.8, 23.4], [244.8, 24.6], [267.1, 26.5], [301.7, 29.4], [82.2, 10], [308.9, 30]])('%d g/L of sugar is %d °Brix', (sugar, brix) => expect(labUnit('sugarGPerL')!.convert(sugar)).toBeCloseTo(brix, 1));
+  it('knows no sugar outside that table', () => expect([82, 309, -1].map(labUnit('sugarGPerL')!.convert)).toEqual([Number.NaN, Number.NaN, Number.NaN]));
   it.each([['sulphuricGPerL', 4.5, 6.886199], ['meqPerL', 80, 6.00348], ['mmolPerL', 40, 6.00348], ['tartaricGPerL', 6, 6]])('%s %d is %d g/L as tartaric', (unit, from, to) => expect(labUnit(unit)!.convert(from)).toBeCloseTo(to, 5));
   it('cannot make °Brix of what is no density', () => expect([labUnit('gravity')!.convert(23), labUnit('solidsGPerL')!.convert(5000)]).toEqual([Number.NaN, Number.NaN]));
   it('counts half the limit of a figure below it', () => expect([countedValue(0.1, ['belowDetection']), countedValue(0.1, [])]).toEqual([0.05, 0.1]));

@@ -1,7 +1,8 @@
 import PDFDocument from 'pdfkit';
 import QRCode from 'qrcode';
 import type { FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
-import { restrictionsAt } from '../../shared/field/entry.ts';
+import { restrictionsWithin } from '../../shared/field/entry.ts';
+import { dayBounds } from '../../shared/season/dayBounds.ts';
 import { measureWords } from './measureWords.ts';
 import { drawSheetStrip } from './sheetStrip.ts';
 import { paperLocale, sheetTexts, type SheetLanguage } from './sheetTexts.ts';
@@ -97,11 +98,12 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   const rule = () => pdf.moveTo(edge, pdf.y).lineTo(edge + width, pdf.y).lineWidth(1.5).stroke();
   rule();
   pdf.y += 4;
-  const [closed] = restrictionsAt(round.restrictions, { at: `${round.onDate}T12:00:00Z`, rowIds: round.stops.map(({ rowId }) => rowId) });
-  if (closed) {
-    const until = new Intl.DateTimeFormat(paperLocale(language), { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(closed.endsAt));
-    pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${until} (${closed.product}, ${closed.setBy})`, edge, pdf.y, { width });
-  } else pdf.font('Helvetica').fontSize(9).text(texts.noRestriction, edge, pdf.y, { width });
+  const moment = new Intl.DateTimeFormat(paperLocale(language), { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' });
+  const told = (time: string) => moment.format(new Date(time));
+  // The whole of the estate's day: the sheet is printed before and carried until evening.
+  const closed = restrictionsWithin(round.restrictions, { ...dayBounds(timeZone, round.onDate), rowIds: round.stops.map(({ rowId }) => rowId) });
+  for (const { startsAt, endsAt, product, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}: ${product}, ${setBy})`, edge, pdf.y, { width });
+  if (closed.length === 0) pdf.font('Helvetica').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
   pdf.font('Helvetica').fontSize(9).text(texts.law, { width });
   pdf.text(`${texts.safety} ${texts.meeting}: ${round.safety.meetingPoint || '-'}. ${texts.emergency}: ${round.safety.emergencyNumber || '-'}.`, { width });
   pdf.font('Helvetica-Bold').text(texts.notVine, { width });

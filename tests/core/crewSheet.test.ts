@@ -14,7 +14,7 @@ function round(stops: WalkStop[], asked = measures): FieldRound {
     id: '', planId: '', planName: 'Plan', blockId: '', blockName: 'Marl', estateName: 'Estate', onDate: '2026-08-20', state: 'sent', gate: 'North gate', notes: '', startPostColour: 'red', endPostColour: 'blue', vineOneEnd: 'start',
     people: [], zones: [{ number: 1, name: 'Upper + Lower', colour: null, vines: 100, targets: stops.length }], measures: asked,
     rows: [{ id: 'r3', label: '3', firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [], ends: null }],
-    stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], lifters: [], checkedAt: '', acknowledgedAt: null,
+    stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], lifters: [], checkedAt: '2026-08-20T04:10:00Z', acknowledgedAt: null,
   };
 }
 const options = { paper: 'a4' as const, link: 'https://example.org/r', timeZone: 'Europe/Paris' };
@@ -55,6 +55,21 @@ describe('the crew sheet', () => {
       for (const box of boxes) expect(box.x >= 36 && box.x + box.width <= width - 36 + 0.01).toBe(true);
     });
     expect(boxesOf(pages)).toHaveLength(80);
+  });
+
+  it('shows every restriction of the estate’s own day, whatever the hour, and when it was looked for', async () => {
+    const rule = (startsAt: string, endsAt: string, product: string) => ({ id: product, blockId: '', blockName: 'Marl', rowIds: null, startsAt, endsAt, product, labelInterval: '', noPickBefore: null, note: '', setBy: 'Mara Thorn', lifted: null, inForce: true });
+    const restrictions = [rule('2026-08-19T14:00:00Z', '2026-08-20T06:00:00Z', 'Sulphur'), rule('2026-08-20T15:00:00Z', '2026-08-21T15:00:00Z', 'Copper'), rule('2026-08-20T22:30:00Z', '2026-08-21T09:00:00Z', 'Tomorrow’s')];
+    const words = async (timeZone: string, rules: typeof restrictions) => readPdf(await crewSheet([{ person: 'Nia Holt', language: 'en', round: { ...round([stop(1, ['clusterCount'])]), restrictions: rules } }], { ...options, timeZone })).flatMap(({ texts }) => texts).join(' ');
+    const paris = await words('Europe/Paris', restrictions);
+    // Neither is in force at noon; both are in force within that day in Paris. The third begins after its midnight.
+    expect(paris).toMatch(/DO NOT ENTER until Thu,? 20 Aug,? (at )?08:00 .*Sulphur, Mara Thorn/u);
+    expect(paris).toContain('Copper, Mara Thorn');
+    expect(paris).not.toContain('Tomorrow');
+    expect(paris).not.toContain('No restriction recorded');
+    // In New Zealand that day is over at noon by UTC.
+    expect(await words('Pacific/Auckland', restrictions.slice(1, 2))).toMatch(/No restriction recorded.*\(Thu,? 20 Aug,? (at )?16:10\)/u);
+    expect(await words('Pacific/Auckland', restrictions.slice(0, 1))).toContain('Sulphur');
   });
 
   it('speaks the language of its person, names post colours, zones sampled as one, safety, and what else the day holds', async () => {

@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import type { FieldMeasure, WalkStop } from '../../shared/contracts/rounds.ts';
 import { standingOf } from '../../shared/field/enoughHere.ts';
-import { restrictionsAt } from '../../shared/field/entry.ts';
+import { dayBounds } from '../../shared/season/dayBounds.ts';
+import { restrictionsAt, restrictionsNow } from '../../shared/field/entry.ts';
 import { afterKey, isOdd, valueOf, type Key } from '../../shared/field/valueEntry.ts';
 import { isStopDone, nextOpenStop, openAt, vineAt, type WalkEntry } from '../../shared/field/walkState.ts';
 
@@ -92,6 +93,28 @@ describe('entry restrictions on the phone', () => {
   it('gives the longest of several first', () => {
     const rules = [rule('2026-07-08T00:00:00Z', '2026-07-09T12:00:00Z'), rule('2026-07-08T00:00:00Z', '2026-07-11T00:00:00Z')];
     expect(restrictionsAt(rules, at).map(({ endsAt }) => endsAt)).toEqual(['2026-07-11T00:00:00Z', '2026-07-09T12:00:00Z']);
+  });
+
+  it('holds by the phone’s clock and by the server’s where the two differ: a clock that runs ahead opens no block early', () => {
+    const rules = [rule('2026-07-09T06:00:00Z', '2026-07-09T08:00:00Z')];
+    const by = (phone: string, offMin: number) => restrictionsNow(rules, { now: new Date(phone), clockOffMs: offMin * 60_000, rowIds: ['a', 'b'] }).length;
+    // The server has 07:55; the phone, ten minutes ahead, shows 08:05.
+    expect(by('2026-07-09T08:05:00Z', 10)).toBe(1);
+    expect(by('2026-07-09T08:05:00Z', 0)).toBe(0);
+    // The phone is a day behind, and the server has 07:00.
+    expect(by('2026-07-08T07:00:00Z', -1440)).toBe(1);
+    // Ten minutes behind, at 08:05 by the server: its own clock still says no.
+    expect(by('2026-07-09T07:55:00Z', -10)).toBe(1);
+    expect(by('2026-07-09T08:15:00Z', 10)).toBe(0);
+  });
+
+  it('holds for a day at the estate, which is longer or shorter where clocks are changed', () => {
+    const iso = (zone: string, day: string) => Object.values(dayBounds(zone, day)).map((moment) => moment.toISOString());
+    expect(iso('Pacific/Auckland', '2026-01-10')).toEqual(['2026-01-09T11:00:00.000Z', '2026-01-10T11:00:00.000Z']);
+    // The clock goes forward on 29 March 2026 in the European Union, back on 25 October (Directive 2000/84/EC).
+    expect(iso('Europe/Paris', '2026-03-29')).toEqual(['2026-03-28T23:00:00.000Z', '2026-03-29T22:00:00.000Z']);
+    expect(iso('Europe/Paris', '2026-10-25')).toEqual(['2026-10-24T22:00:00.000Z', '2026-10-25T23:00:00.000Z']);
+    expect(iso('Nowhere/Atall', '2026-01-10')).toEqual(['2026-01-10T00:00:00.000Z', '2026-01-11T00:00:00.000Z']);
   });
 
   it('holds from its first to its last moment, for its rows, until it is lifted', () => {

@@ -3,6 +3,7 @@ import { may } from '../../../shared/catalog/permissions.ts';
 import type { PlanBasis } from '../../../shared/contracts/plans.ts';
 import type { NewRound } from '../../../shared/contracts/rounds.ts';
 import { toUtm } from '../../../shared/geo/utm.ts';
+import { dayBounds } from '../../../shared/season/dayBounds.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
@@ -76,7 +77,7 @@ interface Assignment {
 
 async function tell(trx: Transaction, { access, plan, input, people, walk, link }: Assignment): Promise<void> {
   const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
-  const closed = await longestOn(trx, { estateId: access.estateId, blockId: plan.blockId, day: input.onDate });
+  const closed = await longestOn(trx, { estateId: access.estateId, blockId: plan.blockId, day: input.onDate, timeZone: estate.timeZone });
   const { basis } = plan.result as { basis: PlanBasis };
   for (const [i, person] of people.entries()) {
     if (person.email === null) continue;
@@ -88,9 +89,10 @@ async function tell(trx: Transaction, { access, plan, input, people, walk, link 
   }
 }
 
-/** The restriction that ends last of those in force at some time of the day; which rows it concerns stands on sheet and phone. */
-async function longestOn(trx: Transaction, { estateId, blockId, day }: { estateId: string; blockId: string; day: string }): Promise<EntryRestriction | undefined> {
-  return EntryRestriction.query(trx).where({ estateId, blockId }).whereNull('liftedAt').where('startsAt', '<', `${day}T23:59:59Z`).where('endsAt', '>', `${day}T00:00:00Z`).orderBy('endsAt', 'desc').first();
+/** The restriction that ends last of those in force at some time of the estate’s day; which rows it concerns stands on sheet and phone. */
+async function longestOn(trx: Transaction, { estateId, blockId, day, timeZone }: { estateId: string; blockId: string; day: string; timeZone: string }): Promise<EntryRestriction | undefined> {
+  const { from, to } = dayBounds(timeZone, day);
+  return EntryRestriction.query(trx).where({ estateId, blockId }).whereNull('liftedAt').where('startsAt', '<', to).where('endsAt', '>', from).orderBy('endsAt', 'desc').first();
 }
 
 function closedWords({ endsAt, product }: EntryRestriction, language: string, timeZone: string): string {

@@ -130,6 +130,8 @@ export interface PointsUnderstood {
   position: { first: string; second: string; frame: 'lonlat' | 'projected' } | null;
   reference: ReferenceSystem | null;
   epsg: number | null;
+  /** Rows with a usable position, also while their place on the map is asked about. */
+  count: number;
   /** One entry per kept row. */
   pointsLonLat: readonly LonLat[];
   /** Row number in the file (header = 1) of each kept row. */

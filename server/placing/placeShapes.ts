@@ -14,12 +14,15 @@ import { factsFromAnswers, placeOnBlocks } from './placeRaster.ts';
 
 const mostClasses = 60;
 
-/** A layer from areas or points with an attribute, such as a soil map. Areas that crossed themselves are used as repaired. */
+/** A layer from areas or points with an attribute, such as a soil map. Areas that crossed themselves are used as repaired; those too tangled for it are left out. */
 export async function placeShapes(input: PlaceInput, understood: VectorUnderstood): Promise<PlacedLayer[]> {
   const { source } = input;
   const layer = understood.layers.find((each) => each.name === source.answers.sourceLayer) ?? understood.layers[0]!;
   const repaired = new Map(understood.repairs.filter((repair) => repair.layer === layer.name).map((repair) => [repair.feature, repair.repaired]));
-  const features = layer.featuresLonLat.features.map((feature): Feature => ({ ...feature, geometry: (repaired.get(feature.id as number) ?? feature.geometry) as Geometry }));
+  const features = layer.featuresLonLat.features.flatMap((feature): Feature[] => {
+    const mended = repaired.get(feature.id as number);
+    return mended === null ? [] : [{ ...feature, geometry: (mended ?? feature.geometry) as Geometry }];
+  });
   const field = layer.fields.find((each) => each.name === source.answers.attribute)!;
   const asClasses = source.answers.purpose === 'soil' && (field.kind === 'text' || source.answers.soilAs === 'classes');
   const areas = features.flatMap((feature) => areasOf(feature, field.name) ?? []);

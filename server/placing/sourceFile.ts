@@ -39,7 +39,7 @@ export function summaryOf(understood: Understood): UnderstoodFile {
   if (understood.kind === 'points') {
     const { columns, position, setAside, pointsLonLat } = understood;
     return {
-      kind: 'points', ...base, outlineLonLat: boxOf(pointsLonLat), sampleLonLat: evenly(pointsLonLat).flatMap((position) => pairs(rounded(position))!), count: pointsLonLat.length, columns: columns.map(copyField),
+      kind: 'points', ...base, outlineLonLat: boxOf(pointsLonLat), sampleLonLat: evenly(pointsLonLat).flatMap((position) => pairs(rounded(position))!), count: understood.count, columns: columns.map(copyField),
       position: position === null ? null : { first: position.first, second: position.second },
       setAside: setAside.map(({ reason, count }) => ({ reason, count })),
     };

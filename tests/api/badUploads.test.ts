@@ -78,6 +78,7 @@ describe('a file that cannot be used is refused in one sentence and leaves nothi
     ['a single part of a shapefile', 'alone.shp', () => shapes.shp, 'missing-part', /Pack all parts/],
     ['GeoJSON that is no JSON', 'broken.geojson', () => '{"type":"FeatureCollection","features":[', 'damaged', /broken\.geojson/],
     ['GeoJSON without shapes', 'none.geojson', () => '{"type":"FeatureCollection","features":[]}', 'no-layer', /no shapes/],
+    ['a table of positions without a measurement', 'posts.csv', () => `lat,lon,note\n${[10, 20].map((x) => [...lonLatAt(x, x)].reverse().join(',')).map((at) => `${at},post`).join('\n')}\n`, 'no-values', /posts\.csv: It holds points without a number to map \(it has note\)\. Add a column/],
     ['a table without positions', 'lab.csv', () => 'sample;brix\nA;21\nB;22\n', 'no-coordinates', /latitude and longitude/],
   ];
 
@@ -121,6 +122,16 @@ describe('a file that cannot be used is refused in one sentence and leaves nothi
 });
 
 describe('a file that is doubtful is asked about, never guessed', () => {
+  it('points on one line lie on the block that they cross', async () => {
+    const lines = Array.from({ length: 12 }, (_, i) => `${lonLatAt(5, 30)[1]},${lonLatAt(5 + 6 * i, 30)[0]},${20 + i}`);
+    const answer = await upload('one_line.csv', ['lat,lon,ec', ...lines].join('\n'));
+    expect(answer.status, answer.text).toBe(201);
+    expect(answer.body.items[0].covers).toMatchObject([{ name: 'Stone Piece' }]);
+    const sample = answer.body.items[0].understood.sampleLonLat as [number, number][];
+    expect(sample).toHaveLength(12);
+    expect(sample[0]![0]).toBeCloseTo(lonLatAt(5, 30)[0], 6);
+  });
+
   it('a self-crossing soil shape is repaired in sight, with the place', async () => {
     const bow = [[0, 0], [100, 60], [100, 0], [0, 60], [0, 0]].map(([x, y]) => lonLatAt(x!, y!));
     const answer = await upload('soil_bow.geojson', collection(bow));
@@ -138,6 +149,16 @@ describe('a file that is doubtful is asked about, never guessed', () => {
   it('a shapefile without its index is read all the same', async () => {
     const answer = await upload('noshx.zip', writeZip({ 'a.shp': shapes.shp, 'a.dbf': shapes.dbf, 'a.prj': wgs84 }));
     expect(answer.body.items[0], answer.text).toMatchObject({ state: 'asks', understood: { layers: [{ count: 1 }] } });
+  });
+
+  it('a scribble among soil shapes is left out, and said so', async () => {
+    let state = 3;
+    const random = () => (state = (state * 48_271) % 2_147_483_647) / 2_147_483_647;
+    const scribble = Array.from({ length: 400 }, () => lonLatAt(100 * random(), 60 * random()));
+    const answer = await upload('scribble.geojson', collection([...scribble, scribble[0]!], square as [number, number][]));
+    expect(answer.status, answer.text).toBe(201);
+    expect(answer.body.items[0].notes).toEqual(expect.arrayContaining([expect.objectContaining({ code: 'shapes-tangled', params: expect.objectContaining({ shapes: 1 }) })]));
+    expect(JSON.stringify(answer.body)).not.toMatch(/NaN|null ha/);
   });
 
   it('a shapefile without a projection file', async () => {

@@ -48,7 +48,7 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
     const choices = numericColumns(table, decimalMark).map((name) => ({ value: name, label: name }));
     if (choices.length < 2) throw new ImportProblem({ code: 'no-coordinates', fact: `None of its columns holds positions (it has ${table.names.slice(0, 6).join(', ').slice(0, 120)}).`, remedy: isReadings ? 'Readings by row and vine come in under "Earlier readings"; a layer needs columns with latitude and longitude, or easting and northing.' : 'Add columns with latitude and longitude, or easting and northing.' });
     questions.push({ code: 'columns', text: 'Which columns hold longitude (or easting) and latitude (or northing)?', choices });
-    return { ...base, columns: describe(table, table.rows), position: null, reference: null, epsg: null, pointsLonLat: [], rowNumbers: [], numbers: new Map(), texts: new Map(), setAside: [], questions, warnings };
+    return { ...base, columns: describe(table, table.rows), position: null, reference: null, epsg: null, count: table.rows.length, pointsLonLat: [], rowNumbers: [], numbers: new Map(), texts: new Map(), setAside: [], questions, warnings };
   }
   const positions = readPositions(table, columns, { mark: decimalMark, swap: options.answers?.swapAxes === true });
   warnings.push(...positions.warnings);
@@ -66,6 +66,7 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
     position: { first: table.names[columns.x]!, second: table.names[columns.y]!, frame: placed.frame },
     reference: placed.reference,
     epsg: placed.reference?.epsg ?? null,
+    count: placed.reference === null ? positions.kept.length : kept.length,
     pointsLonLat: placed.lonLat.filter((position) => position !== null),
     rowNumbers: kept.map((row) => table.rowNumbers[row]!),
     numbers: collected.numbers,

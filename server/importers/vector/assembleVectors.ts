@@ -12,7 +12,7 @@ import { describeField } from '../describeFields.ts';
 import type { RawLayer } from './rawLayer.ts';
 import { overlapWarnings } from './overlaps.ts';
 import { eachPosition, mapPositions } from './positions.ts';
-import { checkPolygon } from './repairPolygon.ts';
+import { checkPolygon, repairBudget, type RepairBudget } from './repairPolygon.ts';
 import { layerWarnings, noteWarnings, repairWarning } from './vectorWarnings.ts';
 
 export interface AssembleInputs {
@@ -48,7 +48,8 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const usable = placement?.outlineLonLat === null || placement === null ? null : reference;
   const repairs: GeometryRepair[] = [];
   const out: VectorLayer[] = [];
-  for (const layer of cleaned) out.push(await finishLayer(layer, { reference: usable, options, warnings, repairs }));
+  const budget = repairBudget();
+  for (const layer of cleaned) out.push(await finishLayer(layer, { reference: usable, options, warnings, repairs, budget }));
   warnings.push(...repairs.map(repairWarning));
   return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions: withSample(questions, sample, reference), warnings };
 }
@@ -94,15 +95,16 @@ interface LayerContext {
   options: ReadOptions;
   warnings: ImportWarning[];
   repairs: GeometryRepair[];
+  budget: RepairBudget;
 }
 
-async function finishLayer(layer: CleanLayer, { reference, options, warnings, repairs }: LayerContext): Promise<VectorLayer> {
+async function finishLayer(layer: CleanLayer, { reference, options, warnings, repairs, budget }: LayerContext): Promise<VectorLayer> {
   const convert = reference === null ? null : toLonLat(reference);
   const features: Feature[] = [];
   for (const [index, { geometry, properties }] of layer.features.entries()) {
     const placed = geometry === null || convert === null ? null : mapPositions(geometry, (position) => convert(swapPair([position[0]!, position[1]!], options)));
     if (placed === null) continue;
-    const repair = await checkPolygon(placed, { layer: layer.name, feature: index });
+    const repair = await checkPolygon(placed, { layer: layer.name, feature: index, budget });
     if (repair !== null) repairs.push(repair);
     features.push({ type: 'Feature', id: index, geometry: placed, properties: { ...properties } });
   }

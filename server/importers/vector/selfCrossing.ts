@@ -4,11 +4,23 @@ type Position = readonly number[];
 
 /**
  * First place where two edges of the rings properly cross (touching at a corner is allowed), and how many crossings there
- * are, counted up to `most`. Edges are swept from west to east, so only edges that overlap in x are compared.
- * Cost: n log n for outlines as they occur.
+ * are, counted up to `most`. Edges are swept along the axis in which they are short, so only edges that overlap there are
+ * compared. Cost: n log n for outlines as they occur; one so tangled that it would take seconds counts as crossing at its start.
  */
-export function findCrossings(rings: readonly (readonly Position[])[], most = 20): { first: [number, number] | null; count: number } {
+export function findCrossings(rings: readonly (readonly Position[])[], most = 1000): { first: [number, number] | null; count: number } {
   const edges = edgesOf(rings);
+  const turned = isWide(edges);
+  if (turned) swapAxes(edges);
+  const found = sweep(edges, most);
+  const [x, y] = found.first ?? [NaN, NaN];
+  return turned && found.first !== null ? { ...found, first: [y, x] } : found;
+}
+
+/** Pairs of edges looked at before the outline is given up: half a second. */
+const mostPairs = 1e8;
+
+function sweep(edges: Float64Array, most: number): { first: [number, number] | null; count: number } {
+  let pairs = 0;
   const order = Array.from({ length: edges.length / 4 }, (_, i) => i).sort((a, b) => westOf(edges, a) - westOf(edges, b));
   let active: number[] = [];
   let first: [number, number] | null = null;
@@ -17,6 +29,8 @@ export function findCrossings(rings: readonly (readonly Position[])[], most = 20
     const west = westOf(edges, edge);
     const [south, north] = [Math.min(edges[edge * 4 + 1]!, edges[edge * 4 + 3]!), Math.max(edges[edge * 4 + 1]!, edges[edge * 4 + 3]!)];
     const still: number[] = [];
+    pairs += active.length;
+    if (pairs > mostPairs) return { first: first ?? [edges[edge * 4]!, edges[edge * 4 + 1]!], count: most };
     for (const other of active) {
       if (Math.max(edges[other * 4]!, edges[other * 4 + 2]!) < west) continue;
       still.push(other);
@@ -31,6 +45,20 @@ export function findCrossings(rings: readonly (readonly Position[])[], most = 20
     active = still;
   }
   return { first, count };
+}
+
+/** Edges are longer in x than in y on the whole. */
+function isWide(edges: Float64Array): boolean {
+  let [across, down] = [0, 0];
+  for (let at = 0; at < edges.length; at += 4) {
+    across += Math.abs(edges[at]! - edges[at + 2]!);
+    down += Math.abs(edges[at + 1]! - edges[at + 3]!);
+  }
+  return across > down;
+}
+
+function swapAxes(edges: Float64Array): void {
+  for (let at = 0; at < edges.length; at += 2) [edges[at], edges[at + 1]] = [edges[at + 1]!, edges[at]!];
 }
 
 /** Four numbers an edge: x, y, x, y. */

@@ -71,7 +71,7 @@ export async function requireOverBlocks(estateId: string, fileName: string, outl
   const { covers, nearestKm } = await blocksUnder(estateId, outline);
   if (covers.length > 0) return;
   if (nearestKm === null) throw new ImportProblem({ code: 'not-overlapping', fact: 'This estate has no blocks yet that it could lie on.', remedy: 'Make a block first, then send the file again.', file: fileName });
-  const shown = nearestKm < 10 ? nearestKm.toFixed(1) : String(Math.round(nearestKm));
+  const shown = nearestKm < 10 ? Math.max(0.1, nearestKm).toFixed(1) : String(Math.round(nearestKm));
   throw new ImportProblem({
     code: 'not-overlapping',
     fact: `It does not cover any of the blocks: the nearest is ${shown} km away.`,

@@ -29,7 +29,10 @@ export async function blocksUnder(estateId: string, outline: readonly (readonly 
   const ring = JSON.stringify({ type: 'Polygon', coordinates: [outline] });
   const answer = (await Block.knex().raw(
     `with f as (select ST_MakeValid(ST_SetSRID(ST_GeomFromGeoJSON(?), 4326)) as shape)
-     select b.id as "blockId", b.name, ST_Area(ST_Intersection(b.boundary, f.shape)) / ST_Area(b.boundary) as share, ST_Distance(b.boundary::geography, f.shape::geography) / 1000 as km
+     select b.id as "blockId", b.name,
+       -- Points on one line have no area, and lie on the block all the same.
+       greatest(ST_Area(ST_Intersection(b.boundary, f.shape)) / ST_Area(b.boundary), case when ST_Dimension(f.shape) < 2 and ST_Intersects(b.boundary, f.shape) then 1e-6 else 0 end) as share,
+       ST_Distance(b.boundary::geography, f.shape::geography) / 1000 as km
      from blocks b, f where b.estate_id = ? and b.retired_at is null order by b.name`,
     [ring, estateId],
   )) as { rows: (Covered & { km: number })[] };

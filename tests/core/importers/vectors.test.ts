@@ -16,6 +16,34 @@ const zipOf = (plan: ShapefilePlan, more: Record<string, string> = {}): Uint8Arr
 const read = (bytes: Uint8Array | string, fileName = 'soil.zip') => readVectors(bytes, { fileName });
 const polygon = (coordinates: unknown): Uint8Array => text(JSON.stringify({ type: 'Polygon', coordinates }));
 
+describe('outlines too tangled to mend', () => {
+  const area = (ring: readonly (readonly number[])[]) => ({ type: 'Feature', properties: { n: 1 }, geometry: { type: 'Polygon', coordinates: [ring] } });
+  const read = (features: unknown[]) => readVectors(new TextEncoder().encode(JSON.stringify({ type: 'FeatureCollection', features })), { fileName: 'a.geojson' });
+  let state = 11;
+  const random = () => (state = (state * 48_271) % 2_147_483_647) / 2_147_483_647;
+
+  it('are named with their place and not mended, in little time', async () => {
+    const scribble = Array.from({ length: 3000 }, () => [3 + random() / 1000, 44 + random() / 1000]);
+    const { repairs } = await read([area([...scribble, scribble[0]!])]);
+    expect(repairs).toHaveLength(1);
+    expect(repairs[0]).toMatchObject({ repaired: null, problem: expect.stringMatching(/more than a thousand times, first at 44\.\d{6}, 3\.\d{6}\.$/) });
+  });
+
+  it('are found in combs of either direction without comparing every tooth with every other', () => {
+    const teeth = 40_000;
+    const comb = Array.from({ length: teeth }, (_, i) => [[0, i], [1e6, i], [1e6, i + 0.4], [0, i + 0.5]]).flat();
+    const closed = (ring: readonly number[][]) => [...ring, [-1, teeth], [-1, 0], ring[0]!];
+    const turned = (ring: readonly number[][]) => ring.map(([x, y]) => [y!, x!]);
+    for (const ring of [closed(comb), turned(closed(comb))]) expect(findCrossings([ring]).count).toBe(0);
+    // One tooth leans over its two neighbours.
+    const crossed = closed(comb.map(([x, y], i) => (i === 4 * 7 + 1 ? [x!, y! + 1.2] : [x!, y!])));
+    const [found, other] = [findCrossings([crossed]), findCrossings([turned(crossed)])];
+    expect(found.count).toBeGreaterThan(0);
+    expect(other.count).toBe(found.count);
+    expect(other.first).toEqual([found.first![1], found.first![0]]);
+  });
+});
+
 describe('a real shapefile', () => {
   it('has the areas, attributes and system that OGR 3.6.2 reads', async () => {
     const { layers, epsg } = await read(tracts);

@@ -11,6 +11,7 @@ const computations = {
   compareLayers: async () => (await import('./compareLayers.ts')).compareLayers,
   describeFile: async () => (await import('../placing/describeFile.ts')).describeFile,
   outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,
+  rowsOfFile: async () => (await import('../placing/rowsOfFile.ts')).rowsOfFile,
   placeFile: async () => (await import('../placing/placeFile.ts')).placeFile,
   shareRound: async () => (await import('../ground/shareRound.ts')).shareRound,
   stableGround: async () => (await import('./stableGround.ts')).stableGround,

@@ -9,7 +9,7 @@ const lonLat = z.tuple([z.number(), z.number()]);
 export const importStates = ['reading', 'asks', 'ready', 'done', 'refused'] as const;
 
 /** What a file is used for. `soil` becomes a layer of numbers or of classes, as the next answer says. */
-export const importPurposes = ['boundary', 'vigour', 'conductivity', 'yield', 'soil', 'elevation'] as const;
+export const importPurposes = ['boundary', 'rows', 'vigour', 'conductivity', 'yield', 'soil', 'elevation'] as const;
 export type ImportPurpose = (typeof importPurposes)[number];
 
 /** Growth stages that change what a vigour picture tells. */
@@ -57,6 +57,8 @@ export const importAnswers = z.object({
   steelTrellis: z.enum(['yes', 'no', 'unknown']).optional(),
   /** Field that names the outlines of a boundary file; null when none does. */
   nameField: z.string().max(300).nullable().optional(),
+  /** Field with the labels of rows; null when none has them. */
+  rowLabelField: z.string().max(300).nullable().optional(),
   /** Reasons for setting readings aside that a person took back. */
   takenBack: z.array(z.enum(setAsideReasons)).max(setAsideReasons.length).optional(),
   layerName: shortName.optional(),

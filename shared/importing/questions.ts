@@ -1,7 +1,7 @@
 import { sourceUnits } from '../catalog/sourceUnits.ts';
 import { INDICES, type BandName, type IndexId, type VegetationIndex } from '../analysis/indices.ts';
 import { growthStages, type FieldSummary, type ImportAnswers, type ImportPurpose, type ImportQuestion, type ImportQuestionCode, type QuestionChoice, type UnderstoodFile } from '../contracts/imports.ts';
-import { dateInName, suggestBand, suggestIndex, suggestNameField, suggestPurpose, suggestValueField, unitInName } from './suggestions.ts';
+import { dateInName, suggestBand, suggestIndex, suggestNameField, suggestPurpose, suggestRowField, suggestValueField, unitInName } from './suggestions.ts';
 
 /**
  * What must be asked of a person about a file, as a table: one row a question, in the order of asking. Later questions
@@ -34,7 +34,7 @@ const table: readonly Row[] = [
   bandRow('greenBand', 'green'),
   bandRow('redEdgeBand', 'redEdge'),
   { code: 'band', applies: (asking) => bandCount(asking) > 1 && (asking.answers.value === 'band' || (asking.answers.purpose !== undefined && !isFor(asking, 'vigour', 'boundary'))), choices: bandChoices },
-  { code: 'attribute', applies: (asking) => asking.file.kind !== 'raster' && asking.answers.purpose !== undefined && !isFor(asking, 'boundary'), choices: valueFields, suggestion: (asking) => suggestValueField(valueFieldList(asking), asking.answers.purpose) },
+  { code: 'attribute', applies: (asking) => asking.file.kind !== 'raster' && asking.answers.purpose !== undefined && !isFor(asking, 'boundary', 'rows'), choices: valueFields, suggestion: (asking) => suggestValueField(valueFieldList(asking), asking.answers.purpose) },
   { code: 'holds', applies: (asking) => isFor(asking, 'vigour') && indexOf(asking) === null && (bandCount(asking) <= 1 || asking.answers.value === 'band'), choices: () => [...indexIds, 'other'], suggestion: ({ fileName }) => suggestIndex(fileName) },
   { code: 'soilAs', applies: (asking) => isFor(asking, 'soil') && (asking.file.kind === 'raster' || attributeOf(asking)?.kind === 'number'), choices: () => ['number', 'classes'] },
   { code: 'unit', applies: (asking) => sourceUnits[asking.answers.purpose ?? 'boundary'] !== undefined, choices: ({ answers }) => sourceUnits[answers.purpose ?? 'boundary']!.map((row) => row.unit), suggestion: suggestUnit },
@@ -44,6 +44,7 @@ const table: readonly Row[] = [
   { code: 'canopy', applies: (asking) => isFor(asking, 'vigour') && tellsCanopy(asking), choices: () => ['all', 'threshold', 'rows'] },
   { code: 'steelTrellis', applies: (asking) => isFor(asking, 'conductivity'), choices: () => ['yes', 'no', 'unknown'] },
   { code: 'nameField', applies: (asking) => isFor(asking, 'boundary') && fieldsOf(asking).length > 0, choices: (asking) => [...fieldsOf(asking).map((each) => labelled(each.name, each.name)), null], suggestion: (asking) => suggestNameField(fieldsOf(asking)) },
+  { code: 'rowLabelField', applies: (asking) => isFor(asking, 'rows') && fieldsOf(asking).length > 0, choices: (asking) => [...fieldsOf(asking).map((each) => labelled(each.name, each.name)), null], suggestion: (asking) => suggestRowField(fieldsOf(asking)) },
 ];
 
 /** Pixels up to this size can lie on a vine row alone: a quarter of common row spacings (judgement). */
@@ -96,7 +97,7 @@ function purposesOf({ file, answers }: Asking): ImportPurpose[] {
   const kinds = new Set(layer?.geometryKinds.map((kind) => kind.replace('Multi', '')));
   const hasValues = (layer?.fields ?? []).some((field) => field.kind === 'number' || field.kind === 'text');
   if (kinds.has('Polygon')) return hasValues ? ['boundary', 'soil', 'conductivity', 'yield', 'vigour'] : ['boundary'];
-  return kinds.has('LineString') ? ['boundary'] : ['conductivity', 'yield', 'soil', 'elevation', 'vigour'];
+  return kinds.has('LineString') ? ['rows', 'boundary'] : ['conductivity', 'yield', 'soil', 'elevation', 'vigour'];
 }
 
 function layerOf(file: UnderstoodFile, answers: ImportAnswers) {

@@ -9,6 +9,7 @@ const purposeWords: readonly (readonly [ImportPurpose, RegExp])[] = [
   ['conductivity', /(\bec\b|\beca\b|conduct|conduc|\bems?\b|ms m\b|ds m\b)/],
   ['yield', /(yield|rendim|rendem|resa\b|produ[cz])/],
   ['soil', /(soil|suelo|\bsol\b|suolo|\bsolo\b|texture|textur|\bawc\b|clay|argil)/],
+  ['rows', /\b(rows?|rangs?|hileras?|filas?|filari|fileiras?|linhas?|bardos?)\b/],
   ['boundary', /(bound|outline|block|parcel|parcela|limit|contour|confin|perim|talh)/],
 ];
 
@@ -16,7 +17,7 @@ const purposeWords: readonly (readonly [ImportPurpose, RegExp])[] = [
 export function suggestPurpose(file: UnderstoodFile, fileName: string): ImportPurpose | null {
   const name = plain(fileName);
   const named = purposeWords.find(([, words]) => words.test(name))?.[0] ?? null;
-  if (file.kind === 'raster') return named === 'boundary' ? null : (named ?? (file.bands.length >= 3 ? 'vigour' : null));
+  if (file.kind === 'raster') return named === 'boundary' || named === 'rows' ? null : (named ?? (file.bands.length >= 3 ? 'vigour' : null));
   return named;
 }
 
@@ -54,6 +55,12 @@ export function suggestValueField(fields: readonly FieldSummary[], purpose: Impo
 export function suggestNameField(fields: readonly FieldSummary[]): string | null {
   const named = fields.find((field) => /^(name|nom|nombre|nome|block|bloque|parcela|parcelle|label)/.test(plain(field.name)));
   return (named ?? fields.find((field) => field.kind === 'text' && field.missing === 0 && field.distinct > 1))?.name ?? null;
+}
+
+/** The field that looks like labels of rows: so called, or the only one. */
+export function suggestRowField(fields: readonly FieldSummary[]): string | null {
+  const named = fields.find((field) => /^(row|rang|hilera|fila|filare|fileira|linha|bardo|label|num|nr|no)\b/.test(plain(field.name)));
+  return named?.name ?? (fields.length === 1 ? fields[0]!.name : null);
 }
 
 /** A unit written in the name of a column, such as "EC (mS/m)" or "ec_deep_mS_m". */

@@ -35,15 +35,23 @@ interface OldRow {
   labelWas: string | null;
 }
 
+/** Builds the rows of a block from its spacing and bearing, and lays them. */
+export async function rebuildRows(trx: TransactionOrKnex, block: PlantedBlock, now: Date): Promise<RebuiltRows> {
+  const built = buildRows(block.boundary, { ...block, bearingDeg: block.rowBearingDeg, bearingKind: 'true' });
+  const labels = rowLabels(built.rows.length, block.rowOneSide, block.firstRowLabel).map(String);
+  return {
+    effects: await layRows(trx, block, { built, labels }, now),
+    warnings: built.warnings.filter((warning): warning is BlockWarning & typeof warning => warning.code === 'noRows' || warning.code === 'rowSpacingImplied' || warning.code === 'rowCountNotReached'),
+  };
+}
+
 /**
- * Lays the rows of a block and stores them. Rows and vines that are still there keep their identity. An old row is
+ * Stores rows of a block, built or surveyed. Rows and vines that are still there keep their identity. An old row is
  * retired, never deleted; so is one whose vines had to be counted anew while readings or lots refer to them.
  */
-export async function rebuildRows(trx: TransactionOrKnex, block: PlantedBlock, now: Date): Promise<RebuiltRows> {
+export async function layRows(trx: TransactionOrKnex, block: PlantedBlock, { built, labels }: { built: BlockRows; labels: readonly string[] }, now: Date): Promise<RowEffects> {
   const where = { estateId: block.estateId, blockId: block.id };
-  const built = buildRows(block.boundary, { ...block, bearingDeg: block.rowBearingDeg, bearingKind: 'true' });
   const old = await BlockRow.query(trx).where(where).whereNull('retiredAt').orderBy('ordinal');
-  const labels = rowLabels(built.rows.length, block.rowOneSide, block.firstRowLabel).map(String);
   const { matches, goneRowIds } = matchRows(rowsFromStored(block, old).rows.map((row, at) => ({ rowId: old[at]!.id, row })), built, block);
   const referred = await rowsReferredTo(trx, block.estateId, matches.map((match) => match.rowId));
   const planned = planRows(built, { labels, matches, referred, old: new Map(old.map((row) => [row.id, row])) });
@@ -51,10 +59,7 @@ export async function rebuildRows(trx: TransactionOrKnex, block: PlantedBlock, n
   if (retired.length > 0) await BlockRow.query(trx).where(where).whereIn('id', retired).patch({ retiredAt: now });
   await writeBlockRows(trx, where, planned.records);
   const marksLost = await moveMarks(trx, where, planned.moves);
-  return {
-    effects: { kept: matches.length - planned.renewed.length, made: built.rows.length - matches.length + planned.renewed.length, retired: retired.length, marksLost },
-    warnings: built.warnings.filter((warning): warning is BlockWarning & typeof warning => warning.code === 'noRows' || warning.code === 'rowSpacingImplied' || warning.code === 'rowCountNotReached'),
-  };
+  return { kept: matches.length - planned.renewed.length, made: built.rows.length - matches.length + planned.renewed.length, retired: retired.length, marksLost };
 }
 
 interface Plan {

@@ -12,6 +12,7 @@ import { runCompute } from '../../workers/computePool.ts';
 import { readOutlines } from './outlines.ts';
 import { requireOverBlocks } from './receive.ts';
 import { withSource } from './source.ts';
+import { findRows, takeRows } from './takeRows.ts';
 import { questionsOf, viewImport } from './view.ts';
 
 /** Answers that change how the file itself is read. The others only say what to do with it. */
@@ -19,7 +20,7 @@ const readerAnswers = ['reference', 'projectionText', 'placement', 'noData', 'so
 
 /**
  * Takes answers about a file. When nothing is left to ask, outlines are offered as blocks or the layer is placed in the
- * background. An answer that cannot be used changes nothing.
+ * background; rows are laid at once. An answer that cannot be used changes nothing.
  */
 export async function answerImport(access: Access, importId: string, answers: ImportAnswers): Promise<ImportView> {
   const record = await openImport(access, importId);
@@ -30,11 +31,13 @@ export async function answerImport(access: Access, importId: string, answers: Im
   requireOffered(answers, questions);
   const isComplete = questions.every((question) => question.answered);
   const next = isComplete ? await completed(access, record, { answers: merged, understood: read.understood }) : { state: 'asks' as const, understood: read.understood };
+  const rows = isComplete && merged.purpose === 'rows' ? await withSource(record, merged, (source) => findRows(access, source)) : null;
   await FileImport.transaction(async (trx) => {
     await openImport(access, importId, trx);
-    await FileImport.query(trx).where({ estateId: access.estateId, id: importId }).patch(storable({ answers: merged, state: next.state, understood: next.understood, warnings: read.notes, problem: null }));
+    const laid = rows === null ? null : { state: 'done' as const, warnings: [...read.notes, ...(await takeRows(trx, access, rows, new Date()))], finishedAt: new Date() };
+    await FileImport.query(trx).where({ estateId: access.estateId, id: importId }).patch(storable({ answers: merged, state: next.state, understood: next.understood, warnings: read.notes, problem: null, ...laid }));
     await writeAudit(trx, access, { action: 'import.answer', subjectType: 'import', subjectId: importId, subjectName: record.fileName, before: record.answers, after: merged });
-    if (isComplete && merged.purpose !== 'boundary') await enqueueJob(trx, access, { kind: 'placeLayer', subjectType: 'import', subjectId: importId });
+    if (isComplete && rows === null && merged.purpose !== 'boundary') await enqueueJob(trx, access, { kind: 'placeLayer', subjectType: 'import', subjectId: importId });
   });
   return viewImport(access, importId);
 }

@@ -57,7 +57,7 @@ export function ghostFeatures(ghosts: readonly MapGhost[]): FeatureCollection {
   return collection(
     ghosts.flatMap(({ id, geometry, chosen, points = [] }) => [
       feature(geometry, { id, chosen }),
-      ...(points.length === 0 ? [] : [feature({ type: 'MultiPoint', coordinates: points.map((each) => [...each]) }, { id, chosen })]),
+      ...(points.length === 0 ? [] : [feature({ type: 'MultiPoint', coordinates: points.map((each) => [...each]) }, { id, chosen, dots: true })]),
     ]),
   );
 }

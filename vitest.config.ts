@@ -12,8 +12,8 @@ export default defineConfig({
       { extends: true, test: { name: 'core', include: ['tests/core/**/*.test.ts', 'tests/architecture/**/*.test.ts'], environment: 'node', testTimeout: 60_000 } },
       { extends: true, test: { name: 'api', include: ['tests/api/**/*.test.ts'], environment: 'node', globalSetup: ['tests/api/setup/database.ts'], testTimeout: 60_000, hookTimeout: 60_000, pool: 'forks', maxWorkers: 2, sequence: { groupOrder: 1 } } },
       { extends: true, test: { name: 'client', include: ['tests/client/**/*.test.ts'], environment: 'happy-dom', testTimeout: 30_000 } },
-      { extends: true, test: { ...browser, name: 'e2e', include: ['tests/e2e/journey.test.ts'] } },
-      { extends: true, test: { ...browser, name: 'journeys', include: ['tests/e2e/**/*.test.ts'], exclude: ['tests/e2e/journey.test.ts'] } },
+      { extends: true, test: { ...browser, name: 'e2e', include: ['tests/e2e/journey.test.ts', 'tests/e2e/phoneScript.test.ts'] } },
+      { extends: true, test: { ...browser, name: 'journeys', include: ['tests/e2e/**/*.test.ts'], exclude: ['tests/e2e/journey.test.ts', 'tests/e2e/phoneScript.test.ts'] } },
     ],
   },
 });

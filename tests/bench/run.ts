@@ -5,12 +5,14 @@
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
  * npm run bench -- --import [--runs N] [--data FOLDER]                 seconds and memory of reading pictures, beside GDAL
  * npm run bench -- --requests http://localhost:3000 [--count SECONDS]  how fast a running server answers while it zones
+ * npm run bench -- --phone http://localhost:3000 [--runs N]          the crew's first screen over a slow line, and later without one
  * npm run bench -- --plan [--runs N]                                  CPU milliseconds of a plan on ten hectares
  * npm run bench -- [--runs N] [--cell METRES] [--data FOLDER] [--against 'COMMAND {data} {out} {cell}'] …   speed, as JSON
  */
 
 import { parseArgs } from 'node:util';
 import { benchImport } from './benchImport.ts';
+import { benchPhone } from './benchPhone.ts';
 import { benchPipeline } from './benchPipeline.ts';
 import { benchPlan } from './benchPlan.ts';
 import { benchRequests } from './benchRequests.ts';
@@ -30,6 +32,7 @@ const { values } = parseArgs({
     import: { type: 'boolean', default: false },
     plan: { type: 'boolean', default: false },
     requests: { type: 'string' },
+    phone: { type: 'string' },
     count: { type: 'string' },
     seed: { type: 'string', default: '1000' },
     runs: { type: 'string', default: '3' },
@@ -43,6 +46,7 @@ const print = (value: unknown) => process.stdout.write(`${JSON.stringify(value, 
 const seed = Number(values.seed);
 
 if (values.requests !== undefined) for await (const row of benchRequests(values.requests, Number(values.count ?? 20))) print(row);
+else if (values.phone !== undefined) for (const row of await benchPhone(values.phone, Number(values.runs))) print(row);
 else if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed)) print(row);
 else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);

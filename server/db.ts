@@ -18,6 +18,7 @@ import * as m014 from '../migrations/014_finding_places.ts';
 import * as m015 from '../migrations/015_lot_history.ts';
 import * as m016 from '../migrations/016_earlier_readings.ts';
 import * as m017 from '../migrations/017_marks_of_older_layers.ts';
+import * as m018 from '../migrations/018_round_shares.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -38,6 +39,7 @@ const migrations: Record<string, Knex.Migration> = {
   '015_lot_history': m015,
   '016_earlier_readings': m016,
   '017_marks_of_older_layers': m017,
+  '018_round_shares': m018,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

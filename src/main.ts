@@ -27,11 +27,12 @@ async function start(): Promise<void> {
   const app = createApp(App);
   app.use(createPinia()).use(i18n).use(PrimeVue, primeVueOptions);
   const [session, contact] = [useSessionStore(), useContactStore()];
-  whenContacted((reached) => contact.note(reached, new Date()));
+  whenContacted((reached, serverTime) => contact.note(reached, new Date(), serverTime));
 
   // On a slow line everything that is surely needed comes at once; a wrong guess of the language costs no time.
   const texts = showLanguage(readStored<Session>('session')?.person?.language ?? readStored<Language>('language') ?? deviceLanguage());
   if (location.pathname.endsWith('/field')) void views.fieldWork?.().catch(() => undefined);
+  else if (!location.pathname.includes('/field/')) void import('./components/frame/OfficeShell.vue').catch(() => undefined);
 
   const { answered } = await begin(session);
   if (session.person) useTheme().choose(session.person.theme);

@@ -9,4 +9,5 @@ export class RoundPerson extends Model {
   declare personId: string;
   declare targetIds: string[] | null;
   declare acknowledgedAt: Date | null;
+  declare finishedAt: Date | null;
 }

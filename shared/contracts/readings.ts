@@ -40,11 +40,19 @@ export type VineFinding = z.infer<typeof vineFinding>;
 
 export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).default([]), findings: z.array(z.unknown()).max(500).default([]) });
 
+/** Why something that came from a phone was not stored: phones have the words in five languages. */
+export const refusalCode = z.enum(['blockElsewhere', 'noSuchMeasure', 'otherUnit', 'rowElsewhere', 'notYourRound', 'needsRound', 'readerUnknown', 'bagElsewhere', 'correctsUnknown', 'noSeason', 'otherContent']);
+export interface Refusal {
+  readonly code: z.infer<typeof refusalCode>;
+  readonly reason: string;
+}
+
 export const readingOutcome = z.object({
   id: z.string(),
   /** `received`: stored now or before; with a reason when a line of paper repeats what the phone had sent. `refused`: not stored, for the reason given. `conflict`: stored beside another reading of the same vine. */
   state: z.enum(['received', 'conflict', 'refused']),
   reason: z.string().nullable(),
+  code: refusalCode.optional(),
 });
 export type ReadingOutcome = z.infer<typeof readingOutcome>;
 

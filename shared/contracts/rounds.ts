@@ -17,9 +17,9 @@ export const newRound = z.object({
 export type NewRound = z.infer<typeof newRound>;
 
 export const roundState = z.enum(['sent', 'open', 'closed', 'called off']);
-export const roundChange = z.object({ state: z.enum(['open', 'closed', 'called off']), /** When the phone began; the server's clock otherwise. */ startedAt: z.iso.datetime({ offset: true }).optional() });
+export const roundChange = z.object({ state: z.enum(['open', 'closed', 'called off']), /** When the phone began; the server's clock otherwise. */ startedAt: z.iso.datetime({ offset: true }).optional(), /** Closed for everybody, not one's own part only. */ whole: z.boolean().optional() });
 
-export const roundPerson = z.object({ id, name: z.string(), vines: z.number().int(), seconds: z.number(), acknowledgedAt: z.string().nullable() });
+export const roundPerson = z.object({ id, name: z.string(), vines: z.number().int(), seconds: z.number(), acknowledgedAt: z.string().nullable(), /** When they were done with their part. */ finishedAt: z.string().nullable() });
 
 export const roundSummary = z.object({
   id,

@@ -40,6 +40,8 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
     language,
     region,
     units,
+    /** The mark between whole and part, as this reader writes it. */
+    point: new Intl.NumberFormat(region).formatToParts(0.5).find(({ type }) => type === 'decimal')?.value ?? '.',
     number,
     withUnit,
     /** Figure alone, for a column whose head carries the unit. */

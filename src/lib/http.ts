@@ -9,6 +9,8 @@ export interface RequestOptions {
   readonly signal?: AbortSignal;
   /** Version that the change is based on; the server answers 409 or 412 when somebody was faster. */
   readonly ifMatch?: string | number;
+  /** Given up after so long, as if there were no signal: on a line that has died a browser waits for minutes. */
+  readonly withinMs?: number;
 }
 
 export interface Tagged<T> {
@@ -24,7 +26,7 @@ type Method = 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE';
 
 let csrfToken = '';
 let onSignedOut: () => void = () => undefined;
-let onContact: (reached: boolean) => void = () => undefined;
+let onContact: (reached: boolean, serverTime: Date | null) => void = () => undefined;
 
 /** The session says which token writes need; it changes at sign-in. */
 export function setCsrfToken(token: string): void {
@@ -41,8 +43,8 @@ export function whenSignedOut(handler: () => void): void {
   onSignedOut = handler;
 }
 
-/** Called after every request: true when the server answered at all. */
-export function whenContacted(handler: (reached: boolean) => void): void {
+/** Called after every request: true when the server answered at all, and the time of its clock where it told. */
+export function whenContacted(handler: (reached: boolean, serverTime: Date | null) => void): void {
   onContact = handler;
 }
 
@@ -69,9 +71,29 @@ export const http = {
 };
 
 async function json<T>(method: Method, path: string, body: unknown, options: RequestOptions = {}): Promise<T> {
-  const response = await send(method, path, { options, body });
+  const response = await send(method, path, { options: limited(options), body });
   if (response.status === 204) return undefined as T;
-  return (await response.json()) as T;
+  return (await readBody(response)) as T;
+}
+
+/** An answer that breaks off, or that a hotel's sign-in page gave in place of the server, is none. */
+async function readBody(response: Response): Promise<unknown> {
+  try {
+    return await response.json();
+  } catch (error) {
+    if (error instanceof DOMException && error.name === 'AbortError') throw error;
+    onContact(false, null);
+    throw offlineProblem(error);
+  }
+}
+
+/** With a signal that ends the request after its time. Not `AbortSignal.timeout`: phones of 2021 lack it. */
+function limited(options: RequestOptions): RequestOptions {
+  if (options.withinMs === undefined) return options;
+  const giveUp = new AbortController();
+  setTimeout(() => giveUp.abort(new DOMException('No answer in time.', 'TimeoutError')), options.withinMs);
+  options.signal?.addEventListener('abort', () => giveUp.abort());
+  return { ...options, signal: giveUp.signal };
 }
 
 interface Sending {
@@ -81,7 +103,7 @@ interface Sending {
 
 async function send(method: Method, path: string, { options, body }: Sending, retried = false): Promise<Response> {
   // A screen that opened from what the device holds has no token yet.
-  if (method !== 'GET' && csrfToken === '' && !retried) await isTokenRenewed();
+  if (method !== 'GET' && csrfToken === '' && !retried) await isTokenRenewed(options);
   const response = await reach(addressOf(path, options.query), {
     method,
     credentials: 'same-origin',
@@ -92,7 +114,7 @@ async function send(method: Method, path: string, { options, body }: Sending, re
   if (response.ok) return response;
   const problem = problemFrom(response.status, await response.json().catch(() => null));
   // A token from before a sign-in in another tab is refused: when the session has a newer one, ask once more.
-  if (problem.status === 403 && method !== 'GET' && !retried && (await isTokenRenewed())) return send(method, path, { options, body }, true);
+  if (problem.status === 403 && method !== 'GET' && !retried && (await isTokenRenewed(options))) return send(method, path, { options, body }, true);
   if (problem.status === 401 && path !== '/api/session' && path !== '/api/crew/session') onSignedOut();
   throw problem;
 }
@@ -102,15 +124,21 @@ async function reach(address: string, init: RequestInit): Promise<Response> {
     const response = await fetch(address, init);
     // A gateway that cannot find the server is no contact either.
     const reached = response.status !== 502 && response.status !== 504;
-    onContact(reached);
+    onContact(reached, reached ? serverTimeOf(response) : null);
     if (!reached) throw offlineProblem();
     return response;
   } catch (error) {
     if (error instanceof DOMException && error.name === 'AbortError') throw error;
     if (error instanceof HttpProblem) throw error;
-    onContact(false);
+    onContact(false, null);
     throw offlineProblem(error);
   }
+}
+
+/** The server's clock at the answer, to the second (RFC 9110, Date). */
+function serverTimeOf(response: Response): Date | null {
+  const time = Date.parse(response.headers.get('date') ?? '');
+  return Number.isNaN(time) ? null : new Date(time);
 }
 
 function headersOf(method: Method, body: unknown, options: RequestOptions): Record<string, string> {
@@ -132,15 +160,15 @@ function addressOf(path: string, query: RequestOptions['query'] = {}): string {
   return `${path}?${new URLSearchParams(entries.map(([key, value]) => [key, String(value)])).toString()}`;
 }
 
-async function isTokenRenewed(): Promise<boolean> {
+async function isTokenRenewed({ signal }: RequestOptions): Promise<boolean> {
   const before = csrfToken;
-  const response = await reach('/api/session', { credentials: 'same-origin', headers: { accept: 'application/json' } });
-  const session = (await response.json()) as { csrfToken: string };
+  const response = await reach('/api/session', { credentials: 'same-origin', headers: { accept: 'application/json' }, ...(signal ? { signal } : {}) });
+  const session = (await readBody(response)) as { csrfToken: string };
   setCsrfToken(session.csrfToken);
   return session.csrfToken !== before;
 }
 
-/** Multipart upload that says how far it is; fetch cannot. Field name `files`, other fields as text. */
+/** Multipart upload that says how far it is; fetch cannot. Field name `files`, other fields as text. `withinMs` counts from the last sign of life. */
 function upload<T>(path: string, form: FormData, options: UploadOptions = {}): Promise<T> {
   return new Promise<T>((resolve, reject) => {
     const request = new XMLHttpRequest();
@@ -148,22 +176,51 @@ function upload<T>(path: string, form: FormData, options: UploadOptions = {}): P
     request.responseType = 'json';
     request.setRequestHeader('accept', 'application/json, application/problem+json');
     request.setRequestHeader('x-csrf-token', csrfToken);
-    request.upload.onprogress = (event) => options.onProgress?.(event.loaded, event.total);
+    const patience = patienceOf(request, options.withinMs);
+    request.upload.onprogress = (event) => {
+      patience.more();
+      options.onProgress?.(event.loaded, event.total);
+    };
+    request.onloadend = patience.end;
     request.onload = () => {
-      onContact(true);
+      onContact(true, null);
       if (request.status >= 200 && request.status < 300) return resolve(request.response as T);
       const problem = problemFrom(request.status, request.response);
       if (problem.status === 401) onSignedOut();
       reject(problem);
     };
     request.onerror = () => {
-      onContact(false);
+      onContact(false, null);
       reject(offlineProblem());
     };
-    request.onabort = () => reject(new DOMException('Upload stopped.', 'AbortError'));
+    request.onabort = () => reject(patience.isOver() ? offlineProblem() : new DOMException('Upload stopped.', 'AbortError'));
     options.signal?.addEventListener('abort', () => request.abort());
     request.send(form);
   });
+}
+
+interface Patience {
+  more: () => void;
+  end: () => void;
+  isOver: () => boolean;
+}
+
+/** Ends an upload that has shown no sign of life for so long. */
+function patienceOf(request: XMLHttpRequest, withinMs: number | undefined): Patience {
+  let timer: ReturnType<typeof setTimeout> | undefined;
+  let isOver = false;
+  const end = (): void => clearTimeout(timer);
+  const more = (): void => {
+    end();
+    if (withinMs === undefined) return;
+    timer = setTimeout(() => {
+      isOver = true;
+      onContact(false, null);
+      request.abort();
+    }, withinMs);
+  };
+  more();
+  return { more, end, isOver: () => isOver };
 }
 
 /** Fetches a file and hands it to the browser under the name the server gave, or the one given here; `POST` where making it is a deed. */

@@ -3,6 +3,7 @@ import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { fieldDatabase, type KeptBag } from './fieldDatabase.ts';
 import { oneAtATime } from './oneAtATime.ts';
+import { patienceMs } from './patience.ts';
 
 /**
  * Keeps a closed bag. Answers the bag that carries the label already, when this phone knows one: a label is bound once.
@@ -32,7 +33,7 @@ async function sendAll(personId: string, now: () => Date): Promise<void> {
   for (const estateId of new Set(waiting.map((bag) => bag.estateId))) {
     const bags = waiting.filter((bag) => bag.estateId === estateId);
     try {
-      const { outcomes } = await http.post<BagBatchAnswer>(`/api/estates/${estateId}/bags`, { bags: bags.map(({ bag }) => ({ ...bag, deviceTime: now().toISOString() })) });
+      const { outcomes } = await http.post<BagBatchAnswer>(`/api/estates/${estateId}/bags`, { bags: bags.map(({ bag }) => ({ ...bag, deviceTime: now().toISOString() })) }, { withinMs: patienceMs });
       const transaction = (await fieldDatabase()).transaction('bags', 'readwrite', { durability: 'strict' });
       for (const bag of bags) {
         const outcome = outcomes.find(({ id }) => id === bag.id);

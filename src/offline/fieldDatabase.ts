@@ -53,6 +53,17 @@ export interface KeptPhoto {
   readonly picture: Blob;
   readonly at: string;
   readonly received: 0 | 1;
+  /** Why the server did not take it; it stays and is offered again. */
+  readonly refusal?: string;
+}
+
+/** Somebody is done with a round, and the office does not know yet. */
+export interface KeptClosing {
+  readonly key: string;
+  readonly estateId: string;
+  readonly personId: string;
+  readonly roundId: string;
+  readonly at: string;
 }
 
 /** A bag closed with this phone. */
@@ -76,6 +87,7 @@ interface FieldSchema extends DBSchema {
   photos: { key: string; value: KeptPhoto; indexes: { received: number } };
   bags: { key: string; value: KeptBag; indexes: { received: number; code: string } };
   facts: { key: string; value: { key: string; value: unknown } };
+  closings: { key: string; value: KeptClosing };
 }
 
 export type FieldDatabase = IDBPDatabase<FieldSchema>;
@@ -84,8 +96,9 @@ let opened: Promise<FieldDatabase> | null = null;
 
 /** The phone's own store. One connection a page. */
 export function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
-  opened ??= openDB<FieldSchema>(name, 2, {
+  opened ??= openDB<FieldSchema>(name, 3, {
     upgrade(database, before) {
+      if (before < 3) database.createObjectStore('closings', { keyPath: 'key' });
       if (before < 2) {
         database.createObjectStore('photos', { keyPath: 'id' }).createIndex('received', 'received');
         const bags = database.createObjectStore('bags', { keyPath: 'id' });

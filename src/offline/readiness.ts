@@ -25,11 +25,16 @@ export async function checkReadiness(owner: { estateId: string; personId: string
   return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
 }
 
+/** False as well where the phone is full or its store was taken away: that is what is asked here. */
 async function writesAndReads(now: Date): Promise<boolean> {
-  const database = await fieldDatabase();
   const value = now.toISOString();
-  await database.put('facts', { key: 'selfTest', value });
-  return (await database.get('facts', 'selfTest'))?.value === value;
+  try {
+    const database = await fieldDatabase();
+    await database.put('facts', { key: 'selfTest', value });
+    return (await database.get('facts', 'selfTest'))?.value === value;
+  } catch {
+    return false;
+  }
 }
 
 async function programIsKept(): Promise<boolean> {

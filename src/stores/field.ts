@@ -4,18 +4,19 @@ import type { PhoneAnswer } from '../../shared/contracts/phones.ts';
 import type { VineState } from '../../shared/contracts/rows.ts';
 import type { FieldMeasure, FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/rounds.ts';
 import { http } from '../lib/http.ts';
-import { HttpProblem } from '../lib/httpProblem.ts';
+import { unlessOffline, unlessRefused } from '../lib/unlessOffline.ts';
 import { sendBags } from '../offline/bagBox.ts';
+import { addClosing, closingsOf, dropClosing, sendClosings } from '../offline/closings.ts';
 import { deviceId } from '../offline/deviceId.ts';
-import type { Entry } from '../offline/fieldDatabase.ts';
+import type { Entry, KeptPhoto } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
 import { emptyPhone } from '../offline/emptyPhone.ts';
-import { addEntries, allEntries, entriesOfRound, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
-import { addPhoto, sendPhotos } from '../offline/photoBox.ts';
+import { addEntries, allEntries, entriesOfRound, sendForOthers, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
+import { patienceMs } from '../offline/patience.ts';
+import { addPhoto, refusedPhotos, sendPhotos } from '../offline/photoBox.ts';
 import { pruneReceived } from '../offline/prune.ts';
+import { tellOtherTabs, whenAnotherTabWrites } from '../offline/tabs.ts';
 import { totalWaiting } from '../offline/waiting.ts';
-
-const clockToleranceMs = 5 * 60_000;
 
 interface Owner {
   estateId: string;
@@ -41,8 +42,9 @@ export const useFieldStore = defineStore('field', () => {
   const waiting = ref(0);
   const others = ref(0);
   const isSending = ref(false);
-  /** Minutes by which this phone's clock is off, when it is more than the five that are let pass. */
-  const clockOffMin = ref<number | null>(null);
+  const declinedPhotos = shallowRef<readonly KeptPhoto[]>([]);
+  /** Rounds that were closed on this phone and of which the office does not know yet. */
+  const closedHere = shallowRef<ReadonlySet<string>>(new Set());
   /** This phone was reported lost and holds nothing any more. */
   const isEmptied = ref(false);
   const isReady = ref<boolean | null>(null);
@@ -60,8 +62,12 @@ export const useFieldStore = defineStore('field', () => {
     waiting.value = await totalWaiting(owner.personId);
     others.value = await waitingOfOthers(owner.personId);
     all.value = await allEntries(owner.personId);
+    declinedPhotos.value = await refusedPhotos(owner.personId);
+    closedHere.value = new Set((await closingsOf(owner.personId)).map(({ roundId }) => roundId));
     if (round.value) await show(round.value.id);
   }
+
+  whenAnotherTabWrites(() => void count());
 
   async function show(roundId: string): Promise<void> {
     const stored = await entriesOfRound(owner.personId, roundId);
@@ -75,19 +81,23 @@ export const useFieldStore = defineStore('field', () => {
     if (kept) [rounds.value, listedAt.value] = [kept.items, kept.at];
   }
 
+  /** Puts a round on the phone. Where there is no room the readiness test says so, the work is not acknowledged, and the walk goes on from memory. */
+  const isHeld = (full: FieldRound): Promise<boolean> => keepRound(owner, full, new Date()).then(() => true, () => false);
+
+  const fetchRound = (roundId: string, unless = unlessOffline) => unless(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${roundId}`, { withinMs: patienceMs }));
+
   /** When the server answers, the newest, with each round of one's own put on the phone. */
   async function loadWork(): Promise<void> {
-    const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`));
+    const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`, { withinMs: patienceMs }));
     if (!fresh) return;
-    const mine = fresh.items.filter(({ isMine, state }) => isMine && (state === 'sent' || state === 'open'));
+    const mine = fresh.items.filter(({ isMine, state, people }) => isMine && (state === 'sent' || state === 'open') && !people.some(({ id, finishedAt }) => id === owner.personId && finishedAt !== null));
     // What there is to do shows at once; each round may be started as soon as it is on the phone.
     [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
     await Promise.all(mine.map(async ({ id }) => {
-      const full = await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${id}`));
-      if (full) await keepRound(owner, full, new Date());
-      if (full?.acknowledgedAt === null) await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
+      const full = await fetchRound(id);
+      if (full !== null && (await isHeld(full)) && full.acknowledgedAt === null) await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
     }));
-    await keepList(owner, mine, new Date());
+    await keepList(owner, mine, new Date()).catch(() => undefined);
     await dropOtherRounds(owner, mine.map(({ id }) => id));
     if ((await pruneReceived(new Date())) > 0) await count();
   }
@@ -95,9 +105,9 @@ export const useFieldStore = defineStore('field', () => {
   /** Opens a round from the phone; from the server only when the phone does not have it. */
   async function openRound(roundId: string): Promise<boolean> {
     const kept = await keptRound(owner, roundId);
-    const found = kept?.round ?? (await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${roundId}`)));
+    const found = kept?.round ?? (await fetchRound(roundId));
     if (!found) return false;
-    if (!kept) await keepRound(owner, found, new Date());
+    if (!kept) await isHeld(found);
     round.value = found;
     await show(roundId);
     return true;
@@ -105,14 +115,28 @@ export const useFieldStore = defineStore('field', () => {
 
   /** Fetches the round again for its restrictions. Answers whether the server could be asked. */
   async function refreshRound(roundId: string): Promise<boolean> {
-    const fresh = await unlessOffline(() => http.get<FieldRound>(`/api/estates/${owner.estateId}/rounds/${roundId}`));
+    const fresh = await fetchRound(roundId, unlessRefused);
     if (!fresh) return false;
-    await keepRound(owner, fresh, new Date());
-    round.value = fresh;
+    if (round.value === null || round.value.id === roundId) round.value = fresh;
+    await isHeld(fresh);
     return true;
   }
 
-  const setState = (roundId: string, state: 'open' | 'closed', startedAt?: string) => unlessOffline(() => http.patch(`/api/estates/${owner.estateId}/rounds/${roundId}`, { state, ...(startedAt ? { startedAt } : {}) }));
+  /** Tells the office that the walk has begun, if it is in reach: the first reading tells it as well. */
+  const tellStart = (roundId: string, startedAt: Date) => unlessRefused(() => http.patch(`/api/estates/${owner.estateId}/rounds/${roundId}`, { state: 'open', startedAt: startedAt.toISOString() }, { withinMs: patienceMs }));
+
+  /** Closes a round on the phone at once; the office is told with the next sending. */
+  async function closeRound(roundId: string): Promise<void> {
+    await addClosing({ ...owner, roundId, at: new Date().toISOString() });
+    await count();
+    void send();
+  }
+
+  /** The walk goes on after all, as far as the office does not know better. */
+  async function reopenRound(roundId: string): Promise<void> {
+    await dropClosing({ ...owner, roundId });
+    await count();
+  }
 
   function entryOf(stop: WalkStop, vine: VineAtStop): Pick<Entry, 'id' | 'estateId' | 'personId' | 'roundId' | 'row' | 'vine' | 'at' | 'received' | 'outcome'> {
     return { id: crypto.randomUUID(), ...owner, roundId: round.value!.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
@@ -126,6 +150,7 @@ export const useFieldStore = defineStore('field', () => {
       await addEntries([entry]);
     } finally {
       writing.delete(entry.id);
+      tellOtherTabs();
       await count();
     }
     if (entry.kind !== 'pick') void send();
@@ -159,6 +184,7 @@ export const useFieldStore = defineStore('field', () => {
   async function undo(entry: Entry): Promise<boolean> {
     const isBack = (await takeBack([entry.id])) || entry.kind === 'finding';
     if (entry.kind === 'finding') await setAside(entry.id);
+    tellOtherTabs();
     await count();
     return isBack;
   }
@@ -175,15 +201,27 @@ export const useFieldStore = defineStore('field', () => {
     if (owner.personId === '') return;
     isSending.value = true;
     try {
-      const { reached, clockOffMs } = await sendWaiting(owner.personId, () => new Date());
-      if (clockOffMs !== null) clockOffMin.value = Math.abs(clockOffMs) > clockToleranceMs ? Math.round(clockOffMs / 60_000) : null;
+      const { reached } = await sendWaiting(owner.personId, () => new Date());
       if (reached) await sendBags(owner.personId, () => new Date());
+      if (reached) await sendClosings(owner.personId);
       if (reached) await sendPhotos(owner.personId);
+    } finally {
+      isSending.value = false;
+      tellOtherTabs();
+      await count();
+    }
+    await checkIn();
+  }
+
+  /** Sends in their name what others left here. */
+  async function sendOthers(): Promise<void> {
+    isSending.value = true;
+    try {
+      await sendForOthers(owner, () => new Date());
     } finally {
       isSending.value = false;
       await count();
     }
-    await checkIn();
   }
 
   /** Tells the office how this phone stands, at most once a minute; a phone that was reported lost empties itself once all is received. */
@@ -191,7 +229,7 @@ export const useFieldStore = defineStore('field', () => {
     const state = `${waiting.value} ${isReady.value}`;
     if (owner.estateId === '' || (state === checkedIn.state && Date.now() - checkedIn.at < 60_000)) return;
     const facts = { deviceId: deviceId(), waiting: waiting.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
-    const answer = await unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts));
+    const answer = await unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts, { withinMs: patienceMs }));
     if (!answer) return;
     checkedIn = { state, at: Date.now() };
     if (!answer.isLost || facts.waiting > 0) return;
@@ -204,25 +242,5 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isSending, clockOffMin, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, setState, record, find, pick, undo, photograph, send, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
 });
-
-/** Null when there is no signal or the server declines: how a phone stands is never in the way of work. */
-async function unlessRefused<T>(ask: () => Promise<T>): Promise<T | null> {
-  try {
-    return await ask();
-  } catch (error) {
-    if (error instanceof HttpProblem) return null;
-    throw error;
-  }
-}
-
-/** Null when there is no signal; what the server refuses is thrown on. */
-async function unlessOffline<T>(ask: () => Promise<T>): Promise<T | null> {
-  try {
-    return await ask();
-  } catch (error) {
-    if (error instanceof HttpProblem && error.isOffline) return null;
-    throw error;
-  }
-}

@@ -32,7 +32,8 @@ export const useSamplingStore = defineStore('sampling', () => {
   const rounds = async (estateId: string, planId?: string) => (await http.get<Listed<RoundSummary>>(`${base(estateId)}/rounds`, { query: { plan: planId } })).items;
   const round = (estateId: string, roundId: string) => http.get<FieldRound>(`${base(estateId)}/rounds/${roundId}`);
   const send = (estateId: string, planId: string, sent: z.input<typeof newRound>) => http.post<{ id: string }>(`${base(estateId)}/plans/${planId}/rounds`, sent);
-  const callOff = (estateId: string, roundId: string) => http.patch(`${base(estateId)}/rounds/${roundId}`, { state: 'called off' });
+  /** For everybody who walks it. */
+  const endRound = (estateId: string, roundId: string, state: 'closed' | 'called off') => http.patch(`${base(estateId)}/rounds/${roundId}`, { state, whole: true });
   const sheet = (estateId: string, roundId: string, paper: 'a4' | 'letter') => http.download(`${base(estateId)}/rounds/${roundId}/sheet`, 'sheet.pdf', { query: { paper } });
 
   const labels = (estateId: string, roundId: string, printed: { paper: 'a4' | 'letter' | 'single'; per: 'vine' | 'zone' }) => http.download(`${base(estateId)}/rounds/${roundId}/labels`, 'labels.pdf', { method: 'POST', query: printed });
@@ -45,5 +46,5 @@ export const useSamplingStore = defineStore('sampling', () => {
   const rows = (estateId: string, blockId: string) => http.get<BlockRowsView>(`${base(estateId)}/blocks/${blockId}/rows`);
   const people = async (estateId: string) => (await http.get<Listed<PersonView>>(`${base(estateId)}/people`)).items;
 
-  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, callOff, sheet, labels, blankLabels, divisions, walk, day, standing, measures, addMeasure, changeMeasure, rows, people };
+  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, endRound, sheet, labels, blankLabels, divisions, walk, day, standing, measures, addMeasure, changeMeasure, rows, people };
 });

@@ -8,6 +8,7 @@ import type { personChange, Session, SessionEstate } from '../../shared/contract
 import { dayIn } from '../../shared/season/dayIn.ts';
 import { readStored, writeStored } from '../lib/deviceStore.ts';
 import { http, setCsrfToken } from '../lib/http.ts';
+import { HttpProblem } from '../lib/httpProblem.ts';
 
 export type PersonChange = z.infer<typeof personChange>;
 export type InvitationAnswer = z.infer<typeof invitationAnswer>;
@@ -35,7 +36,7 @@ export const useSessionStore = defineStore('session', () => {
   }
 
   /** The calendar day at the estate, yyyy-mm-dd: what counts by days counts by it, wherever one reads. */
-  const today = () => dayIn(estate.value?.timeZone ?? 'UTC', new Date());
+  const today = (now = new Date()) => dayIn(estate.value?.timeZone ?? 'UTC', now);
 
   /** True when the person reaches at least so far in the current estate; the server decides, menus only mirror it. */
   function can(action: Permission, atLeast: Reach = 'do'): boolean {
@@ -46,6 +47,8 @@ export const useSessionStore = defineStore('session', () => {
 
   async function load(): Promise<void> {
     take(await http.get<Session>('/api/session'));
+    const wish = readStored<{ personId: string; change: PersonChange }>('personChange');
+    if (wish && wish.personId === session.value.person?.id) await changePerson(wish.change);
   }
 
   /** Without signal: the person who was signed in on this device last, so that a crew goes on. The server still decides when it is reached. */
@@ -74,8 +77,18 @@ export const useSessionStore = defineStore('session', () => {
     take(await http.post<Session>('/api/invitations/accept', answer));
   }
 
+  /** Holds at once on this device; without signal the server is told when it is next asked who is signed in. */
   async function changePerson(change: PersonChange): Promise<void> {
-    take(await http.patch<Session>('/api/session/person', change));
+    const { person } = session.value;
+    try {
+      take(await http.patch<Session>('/api/session/person', change));
+      writeStored('personChange', null);
+    } catch (error) {
+      if (!(error instanceof HttpProblem && error.isOffline) || person === null) throw error;
+      session.value = { ...session.value, person: { ...person, ...change } };
+      writeStored('session', { ...session.value, csrfToken: '' });
+      writeStored('personChange', { personId: person.id, change: { ...readStored<{ change: PersonChange }>('personChange')?.change, ...change } });
+    }
   }
 
   function chooseEstate(id: string): void {

@@ -3,6 +3,7 @@ import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { loadBlockVines, zonesOfVines } from '../../server/ground/blockVines.ts';
 import { zonedReadings } from '../../server/ground/zonedReadings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { Membership } from '../../server/models/Membership.ts';
 import { relabelBlockRows } from '../../server/models/BlockRow.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
@@ -132,6 +133,21 @@ describe('a paper sheet', () => {
     expect(await VineFindingRecord.query().first()).toMatchObject({ personId: made.crew[ana]!.id, typedBy: managerId });
     expect((await send(ben, { readings: [paper(2)] })).outcomes[0]!.state).toBe('received');
     expect((await send(ben, { readings: [paper(3, { readBy: made.managerId })] })).outcomes[0]!.state).toBe('refused');
+  });
+
+  it('of somebody whose access has ended, or what their phone still held, is brought by those of the round and the office', async () => {
+    const { id } = made.crew[ana]!;
+    const access = Membership.query().where({ estateId: made.estateId, personId: id });
+    await access.clone().patch({ endedAt: new Date() });
+    try {
+      expect((await made.crew[ana]!.agent.post(`${base()}/readings`, { readings: [made.reading(4)] })).status).toBeGreaterThanOrEqual(401);
+      const held = made.reading(4, { readBy: id, value: 28 });
+      for (const who of [ben, 'manager', ben] as const) expect((await send(who, { readings: [held] })).outcomes[0]!.state).toBe('received');
+      expect(await Reading.query()).toMatchObject([{ personId: id, typedBy: made.crew[ben]!.id, value: 28 }]);
+      expect((await send('manager', { readings: [made.reading(5, { readBy: id })] })).outcomes[0]!.state).toBe('received');
+    } finally {
+      await access.clone().patch({ endedAt: null });
+    }
   });
 
   it('shows the walk of who walked with what their phone had sent, to those who may type it', async () => {

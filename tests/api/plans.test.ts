@@ -288,6 +288,34 @@ describe('a round', () => {
     expect((await manager.get(`${base()}/rounds/${roundId}/sheet?paper=a0`)).status).toBe(422);
   });
 
+  it('ends for each who walks it when they are done, and for all with the last of them or from the office', async () => {
+    const { roundId } = await send([crew.id, otherCrew.id]);
+    const [first, second] = [await app.as(crew.email), await app.as(otherCrew.email)];
+    const seen = async () => ((await manager.get(`${base()}/rounds`)).body as { items: RoundSummary[] }).items[0]!;
+    for (let i = 0; i < 2; i++) expect((await first.patch(`${base()}/rounds/${roundId}`, { state: 'closed' })).status).toBe(204);
+    expect((await seen()).state).toBe('sent');
+    expect((await seen()).people.map(({ id, finishedAt }) => [id, finishedAt !== null])).toEqual(expect.arrayContaining([[crew.id, true], [otherCrew.id, false]]));
+    expect((await fieldOf(second, roundId)).state).toBe('sent');
+    expect((await second.patch(`${base()}/rounds/${roundId}`, { state: 'closed', whole: true })).status).toBe(403);
+    expect((await second.patch(`${base()}/rounds/${roundId}`, { state: 'closed' })).status).toBe(204);
+    expect((await seen()).state).toBe('closed');
+    expect(await AuditEntry.query().where({ action: 'rounds.finish', subjectId: roundId }).resultSize()).toBe(2);
+    const { roundId: another } = await send([crew.id, otherCrew.id]);
+    expect((await manager.patch(`${base()}/rounds/${another}`, { state: 'closed', whole: true })).status).toBe(204);
+    expect((await fieldOf(second, another)).state).toBe('closed');
+  });
+
+  it('is under way with its first reading, where it began out of reach', async () => {
+    const { roundId } = await send([crew.id]);
+    const agent = await app.as(crew.email);
+    const { stops, measures, blockId } = await fieldOf(agent, roundId);
+    const [stop, measure] = [stops[0]!, measures[0]!];
+    const reading = { id: randomUUID(), blockId, roundId, targetId: stop.targetId, rowId: stop.rowId, ordinal: stop.ordinal, measureCode: measure.code, value: measure.minimum, unit: measure.unit, takenAt: '2026-07-09T07:00:00Z' };
+    for (let i = 0; i < 2; i++) await agent.post(`${base()}/readings`, { readings: [reading], findings: [] });
+    expect((await fieldOf(agent, roundId)).state).toBe('open');
+    expect(await AuditEntry.query().where({ action: 'rounds.open', subjectId: roundId }).resultSize()).toBe(1);
+  });
+
   it('is noted as seen once', async () => {
     const { roundId } = await send([crew.id]);
     const agent = await app.as(crew.email);

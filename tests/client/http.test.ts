@@ -59,6 +59,41 @@ describe('http', () => {
     expect(await problemOf(http.get('/api/health'))).toMatchObject({ status: 500, code: 'unknown' });
   });
 
+  it('a line that never answers is given up in its time and counts as no signal', async () => {
+    const contacts: boolean[] = [];
+    whenContacted((reached) => contacts.push(reached));
+    let held: ServerResponse | null = null;
+    answer = (_request, response) => void (held = response);
+    const from = Date.now();
+    const problem = await problemOf(http.post('/api/estates/1/readings', {}, { withinMs: 150 }));
+    expect(Date.now() - from).toBeLessThan(3000);
+    expect(problem.isOffline).toBe(true);
+    expect(contacts).toEqual([false]);
+    held!.end();
+  });
+
+  it('an answer that breaks off in the middle, or a sign-in page of somebody else’s network, is no contact', async () => {
+    const contacts: boolean[] = [];
+    whenContacted((reached) => contacts.push(reached));
+    answer = (_request, response) => {
+      response.writeHead(200, { 'content-type': 'application/json', 'content-length': '400' });
+      response.write('{"outcomes": [');
+      setTimeout(() => response.destroy(), 30);
+    };
+    expect((await problemOf(http.get('/api/estates/1/readings'))).isOffline).toBe(true);
+    answer = (_request, response) => void response.writeHead(200, { 'content-type': 'text/html' }).end('<html>Accept the terms</html>');
+    expect((await problemOf(http.post('/api/estates/1/readings', {}))).isOffline).toBe(true);
+    expect(contacts.at(-1)).toBe(false);
+  });
+
+  it('every answer tells the server’s clock', async () => {
+    const clocks: (Date | null)[] = [];
+    whenContacted((_reached, serverTime) => clocks.push(serverTime));
+    answer = (_request, response) => reply(response, 200, {}, { date: 'Thu, 09 Jul 2026 07:00:00 GMT' });
+    await http.get('/api/session');
+    expect(clocks).toEqual([new Date('2026-07-09T07:00:00Z')]);
+  });
+
   it('a change says which version it was made on', async () => {
     answer = (_request, response) => reply(response, 200, {}, { etag: '"7"' });
     expect((await http.getTagged('/api/estates/1/blocks/2')).etag).toBe('"7"');

@@ -1,9 +1,11 @@
 import AxeBuilder from '@axe-core/playwright';
+import QRCode from 'qrcode';
 import type { BrowserContext, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { PlanList } from '../../shared/contracts/plans.ts';
 import type { ReadingView } from '../../shared/contracts/readings.ts';
+import type { RoundSummary } from '../../shared/contracts/rounds.ts';
 import { startApplication, type Application } from './support/application.ts';
 import { asksOf, heldBy, keepOld, keyIn, openOffice, openPhone, recordMany, startWalk, storedBy, tapFast, type Office } from './support/fieldPhones.ts';
 
@@ -166,6 +168,26 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.unroute('**/api/**');
   });
 
+  it('two tabs of one phone are at the same vine, and the language changes without signal', async () => {
+    const [{ page, context }] = phones as [(typeof phones)[number]];
+    const tab = await context.newPage();
+    await tab.goto(page.url());
+    const place = (of: Page) => of.getByRole('heading', { name: /Row \d+, vine \d+/ }).textContent();
+    const asked = (of: Page) => of.locator('.value span').first().textContent();
+    await tab.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    await keyIn(page, usual(asksOf((await heldBy(page)).round)[(await heldBy(page)).readings.length]!.code, 9));
+    await expect.poll(async () => [await place(tab), await asked(tab)]).toEqual([await place(page), await asked(page)]);
+    expect((await heldBy(tab)).readings).toEqual((await heldBy(page)).readings);
+    await tab.goto(page.url().replace(/\/rounds\/.*/, '/outbox'));
+    await tab.getByLabel('Language').selectOption('fr');
+    await tab.getByText('Hors réseau.').waitFor();
+    await tab.reload();
+    await tab.getByText('Hors réseau.').waitFor();
+    await tab.getByLabel('Langue').selectOption('en');
+    await tab.getByText('No signal.').waitFor();
+    await tab.close();
+  });
+
   it('the browser is started again in the middle, without signal, and nothing is gone', async () => {
     const [{ page }] = phones as [(typeof phones)[number]];
     await recordMany(page, 30);
@@ -230,6 +252,38 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await context.close();
   });
 
+  it('where the browser reads no codes the label is read all the same, also without signal', async () => {
+    const { page } = phones[0]!;
+    const { modules } = QRCode.create('BBBBDP', { errorCorrectionLevel: 'H' });
+    const dark = Array.from({ length: modules.size }, (_, row) => Array.from({ length: modules.size }, (_, column) => modules.get(row, column) === 1));
+    await page.goto(page.url().replace(/\/field.*/, `/field/rounds/${roundId}/bag`));
+    await page.evaluate((dark) => {
+      delete (globalThis as { BarcodeDetector?: unknown }).BarcodeDetector;
+      navigator.mediaDevices.getUserMedia = () => {
+        const canvas = document.createElement('canvas');
+        [canvas.width, canvas.height] = [640, 480];
+        const paint = canvas.getContext('2d')!;
+        let turn = 0.3;
+        setInterval(() => {
+          paint.setTransform(1, 0, 0, 1, 0, 0);
+          paint.fillStyle = '#d8d2c4';
+          paint.fillRect(0, 0, 640, 480);
+          paint.translate(320, 240);
+          paint.rotate((turn += 0.01));
+          paint.translate(-116, -116);
+          paint.fillStyle = '#222';
+          dark.forEach((line, row) => line.forEach((isDark, column) => isDark && paint.fillRect(column * 11, row * 11, 11.5, 11.5)));
+        }, 40);
+        return Promise.resolve(canvas.captureStream(25));
+      };
+    }, dark);
+    await page.getByRole('button', { name: 'Scan the label' }).tap();
+    await page.getByText('The label reads right.').waitFor();
+    expect(await page.getByLabel('Label, six letters').inputValue()).toBe('BBB BDP');
+    await page.goto(page.url().replace(/rounds\/.*/, 'outbox'));
+    expect(await page.evaluate(() => navigator.onLine)).toBe(false);
+  });
+
   it('Ben walks his vines and, without knowing it, three of Ana’s', async () => {
     const { page, context } = phones[1]!;
     await startWalk(page);
@@ -244,8 +298,23 @@ describe('a day of three phones without signal, one of which is lost', () => {
     const { page, context } = phones[2]!;
     await startWalk(page);
     await page.getByRole('heading', { name: /Row \d+, vine \d+/ }).waitFor();
+    // The phone takes what is typed, but has no room to note what the server said: it sends all the same, and asks again.
+    await page.evaluate(() => {
+      const put = IDBObjectStore.prototype.put;
+      IDBObjectStore.prototype.put = () => {
+        throw new DOMException('No room.', 'QuotaExceededError');
+      };
+      (globalThis as { makeRoom?: () => void }).makeRoom = () => void (IDBObjectStore.prototype.put = put);
+    });
     await recordMany(page, 20);
+    await expect.poll(async () => (await readings()).filter(({ person }) => person === names[2]).length, { timeout: 30_000 }).toBe(20);
+    expect((await heldBy(page)).waiting).toBe(20);
+    await page.evaluate(() => {
+      (globalThis as { makeRoom?: () => void }).makeRoom!();
+      window.dispatchEvent(new Event('online'));
+    });
     await expect.poll(async () => (await heldBy(page)).waiting, { timeout: 30_000 }).toBe(0);
+    expect((await readings()).filter(({ person }) => person === names[2])).toHaveLength(20);
     await context.setOffline(true);
     await recordMany(page, 1000);
     cleo = await heldBy(page);
@@ -375,5 +444,21 @@ describe('a day of three phones without signal, one of which is lost', () => {
     await page.goto(page.url().replace(/\/field.*/, '/field'));
     await expect.poll(async () => (await storedBy(page)).length).toBe(before.length - 1);
     expect((await storedBy(page)).map(({ id }) => id)).toEqual(expect.arrayContaining(['recent', 'unsent', 'openRound']));
+  });
+
+  it('Ben closes his part on a line that has died: at once on the phone, in the office when there is signal', async () => {
+    const { page, context } = phones[1]!;
+    await context.route('**/api/**', () => undefined);
+    await page.goto(page.url().replace(/\/field.*/, `/field/rounds/${roundId}`));
+    await page.getByText('The walk is done.').waitFor();
+    await page.getByRole('button', { name: 'Close the round' }).tap();
+    await page.getByText('Closed on this phone. The office is told when there is signal.').waitFor();
+    const state = async () => (await office.get<{ items: RoundSummary[] }>('/rounds')).items.find(({ id }) => id === roundId)!;
+    expect((await state()).people.filter(({ finishedAt }) => finishedAt !== null)).toEqual([]);
+    await context.unroute('**/api/**');
+    await page.reload();
+    await expect.poll(async () => (await state()).people.filter(({ finishedAt }) => finishedAt !== null).map(({ name }) => name)).toEqual([names[1]]);
+    expect((await state()).state).toBe('open');
+    await page.getByText('No work has been sent to you.').waitFor();
   });
 });

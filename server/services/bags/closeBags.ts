@@ -1,5 +1,6 @@
 import type { Transaction } from 'objection';
 import { newBag, type BagBatchAnswer, type BagOutcome, type NewBag } from '../../../shared/contracts/bags.ts';
+import type { Refusal } from '../../../shared/contracts/readings.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
@@ -42,7 +43,7 @@ interface Answer {
 }
 
 const received = (id: string): BagOutcome => ({ id, state: 'received', reason: null, usedBy: null });
-const refused = (id: string, reason: string): Answer => ({ outcome: { id, state: 'refused', reason, usedBy: null }, fresh: false });
+const refused = (id: string, refusal: Refusal): Answer => ({ outcome: { id, state: 'refused', ...refusal, usedBy: null }, fresh: false });
 
 function parseBag(raw: unknown): { bag: NewBag | null; outcome: BagOutcome } {
   const parsed = newBag.safeParse(raw);
@@ -56,16 +57,16 @@ function repeatOutcome(bag: NewBag, { known }: BagContext): Answer | null {
   const stored = known.get(bag.id);
   if (!stored) return null;
   const same = stored.sentCode === bag.code && stored.blockId === bag.blockId && stored.closedAt?.getTime() === Date.parse(bag.closedAt);
-  if (!same) return refused(bag.id, 'A bag with this id is stored with another label, block or time. The first stays; send the other under an id of its own.');
+  if (!same) return refused(bag.id, { code: 'otherContent', reason: 'A bag with this id is stored with another label, block or time. The first stays; send the other under an id of its own.' });
   return { outcome: stored.clashesWith === null ? received(bag.id) : clashOutcome(bag.id, stored.clashesWith), fresh: false };
 }
 
 function refusalOf(bag: NewBag, context: BagContext): Answer | null {
-  if (!context.blocks.has(bag.blockId)) return refused(bag.id, 'This block is not in this estate.');
-  if (bag.roundId !== null && !context.rounds.has(bag.roundId)) return refused(bag.id, 'This round is not one of yours in this estate.');
-  if (bag.roundId === null && context.ownRoundsOnly) return refused(bag.id, 'Crew close bags within a round that was sent to them.');
-  if (bag.vines.some(({ rowId }) => context.rows.get(rowId)?.blockId !== bag.blockId)) return refused(bag.id, 'A row of this bag is not a row of the block.');
-  if (seasonOn(context.seasons, bag.closedAt) === null) return refused(bag.id, `No season of this estate holds ${bag.closedAt.slice(0, 10)}. Check the clock, or make the season first.`);
+  if (!context.blocks.has(bag.blockId)) return refused(bag.id, { code: 'blockElsewhere', reason: 'This block is not in this estate.' });
+  if (bag.roundId !== null && !context.rounds.has(bag.roundId)) return refused(bag.id, { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' });
+  if (bag.roundId === null && context.ownRoundsOnly) return refused(bag.id, { code: 'needsRound', reason: 'Crew close bags within a round that was sent to them.' });
+  if (bag.vines.some(({ rowId }) => context.rows.get(rowId)?.blockId !== bag.blockId)) return refused(bag.id, { code: 'rowElsewhere', reason: 'A row of this bag is not a row of the block.' });
+  if (seasonOn(context.seasons, bag.closedAt) === null) return refused(bag.id, { code: 'noSeason', reason: `No season of this estate holds ${bag.closedAt.slice(0, 10)}. Check the clock, or make the season first.` });
   return null;
 }
 

@@ -19,7 +19,7 @@ export interface BatchContext {
   bags: Set<string>;
   measures: Map<string, MeasureRecord>;
   known: Map<string, Reading>;
-  /** People whose readings the sender may bring: those who walk the same rounds for crew, members of the estate otherwise. */
+  /** People whose readings the sender may bring: those who walk the same rounds, also where their access has ended since, and for the office members of the estate. */
   readers: Set<string>;
   ownRoundsOnly: boolean;
   now: Date;
@@ -44,9 +44,9 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
     .where({ estateId })
     .whereIn('id', [...readings.map((reading) => reading.id), ...ids((reading) => reading.supersedes)]);
   const readerIds = [...ids(({ readBy }) => readBy), ...findings.flatMap(({ readBy }) => (readBy === null ? [] : [readBy]))];
-  const readers: { personId: string }[] = batch.ownRoundsOnly
-    ? await RoundPerson.query(trx).where({ estateId }).whereIn('roundId', roundRows.map(({ id }) => id)).whereIn('personId', readerIds).select('personId')
-    : await Membership.query(trx).where({ estateId }).whereIn('personId', readerIds).select('personId');
+  const walkers: { personId: string }[] = await RoundPerson.query(trx).where({ estateId }).whereIn('roundId', roundRows.map(({ id }) => id)).whereIn('personId', readerIds).select('personId');
+  const members: { personId: string }[] = batch.ownRoundsOnly ? [] : await Membership.query(trx).where({ estateId }).whereIn('personId', readerIds).select('personId');
+  const readers = [...walkers, ...members];
   const seasons = await Season.query(trx).where({ estateId });
   return {
     blocks: new Set(blocks.map((block) => block.id)),

@@ -4,6 +4,7 @@ import { newReading, vineFinding, type BatchAnswer, type NewReading, type Readin
 import { requireReach, type Access } from '../../access/access.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
+import { Round } from '../../models/Round.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { loadBatchContext, type BatchContext } from './batchContext.ts';
 import { findConflicts } from './findConflicts.ts';
@@ -28,15 +29,16 @@ export async function recordBatch(access: Access, input: { readings: unknown[]; 
     const fresh: NewReading[] = [];
     for (const { item: reading, outcome } of readings) {
       if (!reading || outcomes.has(reading.id)) continue;
-      const reason = refusalOf(reading, context, fresh);
+      const refusal = refusalOf(reading, context, fresh);
       const stored = context.known.get(reading.id);
-      if (stored === undefined && reason === null) fresh.push(reading);
-      outcomes.set(reading.id, stored ? repeatOutcome(reading, stored) : reason === null ? outcome : { id: reading.id, state: 'refused', reason });
+      if (stored === undefined && refusal === null) fresh.push(reading);
+      outcomes.set(reading.id, stored ? repeatOutcome(reading, stored) : refusal === null ? outcome : { id: reading.id, state: 'refused', ...refusal });
     }
     const known = await matchPaperAndPhone(trx, access, fresh);
     for (const id of known) outcomes.set(id, { id, state: 'received', reason: 'The phone had sent this value already.' });
     const kept = fresh.filter(({ id }) => !known.has(id));
     await insertReadings(trx, access, kept, context);
+    await openRounds(trx, access, kept);
     for (const id of [...(await findConflicts(trx, access, kept)), ...(await stillOpen(trx, access, [...context.known.keys()]))]) if (outcomes.has(id)) outcomes.set(id, { id, state: 'conflict', reason: null });
     const noted = await storeFindings(trx, access, found, context);
     await takeBackMarks(trx, access, kept.map(({ id }) => id));
@@ -63,7 +65,15 @@ function parse<Item extends { id: string }>(contract: z.ZodType<Item>, raw: unkn
 
 function repeatOutcome(reading: NewReading, stored: Reading): ReadingOutcome {
   const same = stored.value === reading.value && stored.measureCode === reading.measureCode && stored.rowId === reading.rowId && stored.ordinal === reading.ordinal;
-  return same ? { id: reading.id, state: 'received', reason: null } : { id: reading.id, state: 'refused', reason: 'A reading with this id is stored with another value. The first stays; send a correction under an id of its own.' };
+  return same ? { id: reading.id, state: 'received', reason: null } : { id: reading.id, state: 'refused', code: 'otherContent', reason: 'A reading with this id is stored with another value. The first stays; send a correction under an id of its own.' };
+}
+
+/** A walk that began out of reach: its first reading tells that it is under way. */
+async function openRounds(trx: Transaction, access: Access, readings: readonly NewReading[]): Promise<void> {
+  const ids = [...new Set(readings.flatMap(({ roundId }) => roundId ?? []))];
+  if (ids.length === 0) return;
+  const opened = (await Round.query(trx).where({ estateId: access.estateId, state: 'sent' }).whereIn('id', ids).patch({ state: 'open' }).returning('id')) as unknown as { id: string }[];
+  for (const { id } of opened) await writeAudit(trx, access, { action: 'rounds.open', subjectType: 'round', subjectId: id, before: { state: 'sent' }, after: { state: 'open' } });
 }
 
 /** Of readings that were known before, those of which a conflict is still open. */

@@ -1,6 +1,6 @@
 import type { Transaction } from 'objection';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
-import type { ReadingOutcome, VineFinding } from '../../../shared/contracts/readings.ts';
+import type { ReadingOutcome, Refusal, VineFinding } from '../../../shared/contracts/readings.ts';
 import type { Access } from '../../access/access.ts';
 import { writeVines } from '../../models/Vine.ts';
 import { VineFindingRecord } from '../../models/VineFindingRecord.ts';
@@ -12,9 +12,9 @@ export async function storeFindings(trx: Transaction, access: Access, findings: 
   const known = new Set((await VineFindingRecord.query(trx).where({ estateId: access.estateId }).whereIn('id', findings.map(({ id }) => id)).select('id')).map(({ id }) => id));
   const outcomes: ReadingOutcome[] = [];
   for (const finding of findings) {
-    const reason = known.has(finding.id) ? null : refusalOf(finding, context);
-    outcomes.push({ id: finding.id, state: reason === null ? 'received' : 'refused', reason });
-    if (reason !== null || known.has(finding.id)) continue;
+    const refusal = known.has(finding.id) ? null : refusalOf(finding, context);
+    outcomes.push(refusal === null ? { id: finding.id, state: 'received', reason: null } : { id: finding.id, state: 'refused', ...refusal });
+    if (refusal !== null || known.has(finding.id)) continue;
     known.add(finding.id);
     const { readBy, notedAt, ...facts } = finding;
     const personId = readBy ?? access.personId;
@@ -24,11 +24,11 @@ export async function storeFindings(trx: Transaction, access: Access, findings: 
   return outcomes;
 }
 
-function refusalOf(finding: VineFinding, context: BatchContext): string | null {
-  if (context.rows.get(finding.rowId)?.blockId !== finding.blockId) return 'This row is not a row of the block.';
-  if (finding.roundId !== null && !context.rounds.has(finding.roundId)) return 'This round is not one of yours in this estate.';
-  if (context.ownRoundsOnly && finding.roundId === null) return 'Crew record within a round that was sent to them.';
-  return finding.readBy !== null && !context.readers.has(finding.readBy) ? 'Who found this is not somebody of this estate whose findings you may type.' : null;
+function refusalOf(finding: VineFinding, context: BatchContext): Refusal | null {
+  if (context.rows.get(finding.rowId)?.blockId !== finding.blockId) return { code: 'rowElsewhere', reason: 'This row is not a row of the block.' };
+  if (finding.roundId !== null && !context.rounds.has(finding.roundId)) return { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' };
+  if (context.ownRoundsOnly && finding.roundId === null) return { code: 'needsRound', reason: 'Crew record within a round that was sent to them.' };
+  return finding.readBy !== null && !context.readers.has(finding.readBy) ? { code: 'readerUnknown', reason: 'Who found this is not somebody of this estate whose findings you may type.' } : null;
 }
 
 /** A proposed mark goes when the person who made it reads the same vine afterwards: the mark was a slip of the thumb. */

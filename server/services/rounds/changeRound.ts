@@ -27,20 +27,33 @@ export async function acknowledgeRound(access: Access, roundId: string, now: Dat
 
 /**
  * Opens, closes or calls off a round. A round cannot be opened where an entry restriction is in force for its rows.
- * Opening an open round or closing a closed one changes nothing, so that a phone may send it again.
+ * Opening an open round or closing a closed one changes nothing, so that a phone may send it again. Who walks a part closes
+ * their own part; the round is closed with the last of them, or as a whole by whoever sends rounds.
  */
 export async function changeRound(access: Access, roundId: string, change: z.infer<typeof roundChange>, now: Date): Promise<void> {
-  if (change.state === 'called off') requireReach(access, 'rounds.assign');
+  if (change.state === 'called off' || change.whole) requireReach(access, 'rounds.assign');
   await Round.transaction(async (trx) => {
     const round = await Round.query(trx).findOne({ estateId: access.estateId, id: roundId }).forUpdate().throwIfNotFound();
     const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
     if (!member && seesOwnRoundsOnly(access)) throw new Missing();
     if (round.state === change.state) return;
     if (round.state === 'called off') throw new Clash('calledOff', 'This round was called off. Ask who sent it.');
+    if (change.state === 'closed' && !change.whole && member && (await isLeftToOthers(trx, access, member, now))) return;
     if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
     await round.$query(trx).patch({ state: change.state, closedAt: change.state === 'closed' ? now : null });
     await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before: { state: round.state }, after: change });
   });
+}
+
+/** Notes that a member is done, and whether others still walk. */
+async function isLeftToOthers(trx: Transaction, access: Access, member: RoundPerson, now: Date): Promise<boolean> {
+  const { estateId, personId } = access;
+  const { roundId } = member;
+  if (member.finishedAt === null) {
+    await RoundPerson.query(trx).where({ estateId, roundId, personId }).patch({ finishedAt: now });
+    await writeAudit(trx, access, { action: 'rounds.finish', subjectType: 'round', subjectId: roundId });
+  }
+  return (await RoundPerson.query(trx).where({ estateId, roundId }).whereNot({ personId }).whereNull('finishedAt').resultSize()) > 0;
 }
 
 async function refuseRestricted(trx: Transaction, round: Round, { targetIds, at }: { targetIds: string[] | null; at: string }): Promise<void> {

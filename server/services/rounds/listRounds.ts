@@ -36,6 +36,7 @@ export async function listRounds(access: Access, filter: { planId?: string; bloc
     const plan = plans.find(({ id }) => id === round.planId);
     const { shares } = round.walk as RoundWalk;
     const here = members.filter(({ roundId }) => roundId === round.id);
+    const atOf = (personId: string, what: 'acknowledgedAt' | 'finishedAt') => here.find((member) => member.personId === personId)?.[what]?.toISOString() ?? null;
     return {
       id: round.id,
       planId: round.planId,
@@ -51,7 +52,8 @@ export async function listRounds(access: Access, filter: { planId?: string; bloc
         name: people.find(({ id }) => id === share.personId)?.name ?? '',
         vines: share.stops.length,
         seconds: share.walkingS + share.serviceS,
-        acknowledgedAt: here.find(({ personId }) => personId === share.personId)?.acknowledgedAt?.toISOString() ?? null,
+        acknowledgedAt: atOf(share.personId, 'acknowledgedAt'),
+        finishedAt: atOf(share.personId, 'finishedAt'),
       })),
       vines: shares.reduce((sum, { stops }) => sum + stops.length, 0),
       done: Number(done.find(({ roundId }) => roundId === round.id)?.count ?? 0),

@@ -19,6 +19,8 @@ import * as m015 from '../migrations/015_lot_history.ts';
 import * as m016 from '../migrations/016_earlier_readings.ts';
 import * as m017 from '../migrations/017_marks_of_older_layers.ts';
 import * as m018 from '../migrations/018_round_shares.ts';
+import * as m019 from '../migrations/019_pick_intervals.ts';
+import * as m020 from '../migrations/020_vine_history.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -40,6 +42,8 @@ const migrations: Record<string, Knex.Migration> = {
   '016_earlier_readings': m016,
   '017_marks_of_older_layers': m017,
   '018_round_shares': m018,
+  '019_pick_intervals': m019,
+  '020_vine_history': m020,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

@@ -30,6 +30,8 @@ export class Block extends EstateModel {
   declare notes: string;
   declare census: 'unknown' | 'partial' | 'full';
   declare censusAt: Date | null;
+  /** Since when every change of a mark is kept; null when none was made before that. */
+  declare censusKeptSince: Date | null;
   declare version: number;
   declare retiredAt: Date | null;
   declare createdAt: Date;

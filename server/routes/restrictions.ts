@@ -1,9 +1,9 @@
 import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { newRestriction, restrictionLift } from '../../shared/contracts/restrictions.ts';
+import { newRestriction, pickIntervalChange, restrictionLift } from '../../shared/contracts/restrictions.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
-import { liftRestriction, listRestrictions, setRestriction } from '../services/restrictions.ts';
+import { changePickInterval, liftRestriction, listRestrictions, setRestriction } from '../services/restrictions.ts';
 
 const filter = z.object({ block: id.optional() });
 
@@ -21,6 +21,10 @@ export function restrictionRoutes(): Router {
   router.post('/restrictions/:restrictionId/lift', allow('restrictions.lift'), async (request, response) => {
     const { reason } = restrictionLift.parse(request.body);
     await liftRestriction(accessOf(request), idParam(request, 'restrictionId'), { reason, now: new Date() });
+    response.status(204).end();
+  });
+  router.post('/restrictions/:restrictionId/pick-interval', allow('restrictions.lift'), async (request, response) => {
+    await changePickInterval(accessOf(request), idParam(request, 'restrictionId'), pickIntervalChange.parse(request.body), { now: new Date() });
     response.status(204).end();
   });
   return router;

@@ -1,4 +1,4 @@
-import type { NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
+import type { NewPickInterval, NewRestriction, RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { Access } from '../access/access.ts';
 import { Clash, Missing, Unusable } from '../errors.ts';
 import { dayIn } from '../../shared/season/dayIn.ts';
@@ -12,6 +12,7 @@ import { EntryRestriction } from '../models/EntryRestriction.ts';
 import { Estate } from '../models/Estate.ts';
 import { Membership } from '../models/Membership.ts';
 import { Person } from '../models/Person.ts';
+import { PickIntervalChange } from '../models/PickIntervalChange.ts';
 
 /** Restrictions of the estate or of one block, newest first; those in force are marked. With the names of those who may lift one. */
 export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<{ items: RestrictionView[]; lifters: string[] }> {
@@ -37,16 +38,34 @@ export async function setRestriction(access: Access, input: NewRestriction): Pro
   });
 }
 
-/** Ends a restriction, entry and pre-harvest interval alike, before its time. Needs a person who may and a reason; both stay on record. */
+/** Ends entry before its time; the pre-harvest interval stays. Needs a person who may and a reason; both stay on record. */
 export async function liftRestriction(access: Access, restrictionId: string, options: { reason: string; now: Date }): Promise<void> {
   await EntryRestriction.transaction(async (trx) => {
     const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
     if (row.liftedAt) throw new Clash('lifted', 'This restriction was lifted already.');
-    const { timeZone } = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
-    const isPickOpen = row.noPickBefore === null || row.noPickBefore <= dayIn(timeZone, options.now);
-    if (row.endsAt <= options.now && isPickOpen) throw new Clash('over', 'This restriction has ended by itself.');
+    if (row.endsAt <= options.now) throw new Clash('over', 'This entry restriction has ended by itself.');
     await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
-    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString(), noPickBefore: row.noPickBefore }, after: { liftedAt: options.now.toISOString() }, reason: options.reason });
+    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString(), noPickBefore: row.noPickBefore }, reason: options.reason });
+  });
+}
+
+/**
+ * Puts right the day before which nothing may be picked, or takes it away where nothing was applied. Entry stays as it
+ * is. The days before and after, the ground, the person and the reason stay on record.
+ */
+export async function changePickInterval(access: Access, restrictionId: string, input: NewPickInterval, { now }: { now: Date }): Promise<void> {
+  await EntryRestriction.transaction(async (trx) => {
+    const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
+    const { noPickBefore: after, basis, reason } = input;
+    const before = row.noPickBefore;
+    if (before === after) throw new Clash('unchanged', after === null ? 'No pre-harvest interval is recorded here.' : `The day is ${after} already.`);
+    const { timeZone } = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+    const today = dayIn(timeZone, now);
+    if ((before === null || before <= today) && (after === null || after <= today)) throw new Clash('over', 'This pre-harvest interval has ended by itself.');
+    if (basis === 'labelAllows' && (before === null || after! > before)) throw new Unusable('notEarlier', 'The label allows an earlier day only where the recorded one is later. To put a day right, choose that it was typed wrong.');
+    await PickIntervalChange.query(trx).insert({ estateId: access.estateId, restrictionId, basis, dayBefore: before, dayAfter: after, reason, changedBy: access.personId, changedAt: now });
+    await row.$query(trx).patch({ noPickBefore: after });
+    await writeAudit(trx, access, { action: 'restrictions.pickInterval', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { noPickBefore: before }, after: { noPickBefore: after, basis }, reason });
   });
 }
 

@@ -16,10 +16,9 @@ export async function restrictionsInForce(estateId: string, blockIds: string[], 
     .join('people as p', 'p.id', 'e.setBy')
     .where('e.estateId', estateId)
     .whereIn('e.blockId', blockIds)
-    .whereNull('e.liftedAt')
-    .where((query) => query.where((open) => open.where('e.startsAt', '<=', now).where('e.endsAt', '>', now)).orWhere('e.noPickBefore', '>', today))
+    .where((query) => query.where((open) => open.whereNull('e.liftedAt').where('e.startsAt', '<=', now).where('e.endsAt', '>', now)).orWhere('e.noPickBefore', '>', today))
     .orderBy('e.endsAt', 'desc')
-    .select('e.*', 'p.name as setByName', raw('(e.starts_at <= ? and e.ends_at > ?)', [now, now]).as('closed'))) as (EntryRestriction & { setByName: string; closed: boolean })[];
+    .select('e.*', 'p.name as setByName', raw('(e.lifted_at is null and e.starts_at <= ? and e.ends_at > ?)', [now, now]).as('closed'))) as (EntryRestriction & { setByName: string; closed: boolean })[];
   return (blockId) => {
     const here = rows.filter((row) => row.blockId === blockId);
     const longest = here.find((row) => row.closed);

@@ -8,6 +8,7 @@ import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { Person } from '../../models/Person.ts';
+import { pickDaysAt } from '../../models/PickIntervalChange.ts';
 
 /** A lot on a day, whether that day is its own already or asked for. */
 interface DatedLot {
@@ -18,7 +19,7 @@ interface DatedLot {
 /**
  * What people entered that rules out picking a lot on its day: a pre-harvest interval that runs longer, or an entry
  * restriction that touches the day in the estate's own time. A restriction of rows stops only lots with vines in them.
- * `at`: what was entered and not lifted at that moment.
+ * Entry that was lifted is open; a pre-harvest interval holds whatever became of entry. `at`: as it stood at that moment.
  */
 export async function pickStops(estateId: string, lots: readonly DatedLot[], { trx, at = null }: { trx?: Transaction; at?: Date | null } = {}): Promise<Map<string, PickStop[]>> {
   if (lots.length === 0) return new Map();
@@ -29,13 +30,14 @@ export async function pickStops(estateId: string, lots: readonly DatedLot[], { t
     .join('lot_row_runs as run', 'run.lotPartId', 'lot_parts.id')
     .distinct('lot_parts.lotId', 'lot_parts.blockId', 'run.rowId')) as unknown as { lotId: string; blockId: string; rowId: string }[];
   const first = lots.map(({ pickOn }) => pickOn).sort()[0]!;
-  const entered = (await EntryRestriction.query(trx)
-    .where({ estateId })
-    .where((standing) => (at === null ? standing.whereNull('liftedAt') : standing.where('createdAt', '<=', at).where((open) => open.whereNull('liftedAt').orWhere('liftedAt', '>', at))))
-    .whereIn('blockId', [...new Set(parts.map(({ blockId }) => blockId))])
-    .whereRaw('(no_pick_before > ?::date or (ends_at at time zone ?) > ?::timestamp)', [first, timeZone, first])
+  const query = EntryRestriction.query(trx).where({ estateId }).whereIn('blockId', [...new Set(parts.map(({ blockId }) => blockId))]);
+  // A day that was changed since may have been later then.
+  if (at === null) query.whereRaw('(no_pick_before > ?::date or (lifted_at is null and (ends_at at time zone ?) > ?::timestamp))', [first, timeZone, first]);
+  else query.where('createdAt', '<=', at);
+  const entered = (await query
     .orderBy('endsAt', 'desc')
     .select('entry_restrictions.*', EntryRestriction.raw("to_char(starts_at at time zone ?, 'YYYY-MM-DD') as \"firstDay\"", [timeZone]), EntryRestriction.raw("to_char((ends_at at time zone ?) - interval '1 second', 'YYYY-MM-DD') as \"lastDay\"", [timeZone]))) as (EntryRestriction & { firstDay: string; lastDay: string })[];
+  const changed = at === null ? new Map<string, string | null>() : await pickDaysAt(estateId, entered.map(({ id }) => id), { at, trx });
   const [blocks, people] = await Promise.all([
     Block.query(trx).findByIds([...new Set(entered.map(({ blockId }) => blockId))]).select('id', 'name'),
     Person.query(trx).findByIds([...new Set(entered.map(({ setBy }) => setBy))]).select('id', 'name'),
@@ -46,9 +48,11 @@ export async function pickStops(estateId: string, lots: readonly DatedLot[], { t
     const touched = entered.filter(({ blockId, rowIds }) => own.some((part) => part.blockId === blockId && (rowIds === null || rowIds.includes(part.rowId))));
     const stops = touched.flatMap((one): PickStop[] => {
       const facts = { restrictionId: one.id, blockName: nameOf(blocks, one.blockId), product: one.product, labelInterval: one.labelInterval, setBy: nameOf(people, one.setBy), setAt: one.createdAt.toISOString() };
-      const isTooEarly = one.noPickBefore !== null && one.noPickBefore > pickOn;
-      const isClosed = one.firstDay <= pickOn && one.lastDay >= pickOn;
-      return [...(isTooEarly ? [{ ...facts, kind: 'pick' as const, until: one.noPickBefore! }] : []), ...(isClosed ? [{ ...facts, kind: 'entry' as const, until: one.endsAt.toISOString() }] : [])];
+      const firstPick = changed.has(one.id) ? changed.get(one.id)! : one.noPickBefore;
+      const isTooEarly = firstPick !== null && firstPick > pickOn;
+      const isLifted = one.liftedAt !== null && (at === null || one.liftedAt <= at);
+      const isClosed = !isLifted && one.firstDay <= pickOn && one.lastDay >= pickOn;
+      return [...(isTooEarly ? [{ ...facts, kind: 'pick' as const, until: firstPick }] : []), ...(isClosed ? [{ ...facts, kind: 'entry' as const, until: one.endsAt.toISOString() }] : [])];
     });
     return [lotId, stops];
   }));
@@ -62,5 +66,6 @@ export async function requireNoPickStop(trx: Transaction, access: Access, lot: D
   const until = stop.kind === 'pick' ? stop.until : new Date(stop.until).toLocaleString('en-GB', { timeZone, dateStyle: 'medium', timeStyle: 'short' });
   const what = stop.kind === 'pick' ? `rules out picking before ${until}` : `closes the block until ${until}`;
   const lifters = new Intl.ListFormat('en', { type: 'disjunction' }).format((await peopleWhoMay(trx, access.estateId, 'restrictions.lift')).map(({ name }) => name));
-  throw new Clash('restricted', `${stop.blockName}: ${stop.product} (interval as typed: ${stop.labelInterval}) ${what}. Entered by ${stop.setBy}. Choose a later day; only ${lifters} may lift the entry, with a reason, where label and local law allow it.`, { stop, mayLift: lifters });
+  const wayOut = stop.kind === 'pick' ? `only ${lifters} may put that day right, where it was typed wrong, nothing was applied, or the label allows an earlier one` : `only ${lifters} may lift the entry, with a reason, where label and local law allow it`;
+  throw new Clash('restricted', `${stop.blockName}: ${stop.product} (interval as typed: ${stop.labelInterval}) ${what}. Entered by ${stop.setBy}. Choose a later day; ${wayOut}.`, { stop, mayLift: lifters });
 }

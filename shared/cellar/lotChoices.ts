@@ -1,4 +1,5 @@
 import type { Estimate } from '../sampling/precision.ts';
+import { asDependent, combineDependent, type Dependent } from './dependent.ts';
 import { fitTank, litresFrom, type Tank } from './tankFit.ts';
 
 /**
@@ -14,7 +15,7 @@ export interface ChoiceZone {
   readonly id: string;
   readonly variety: string;
   readonly wineType: string;
-  readonly tonnes: Estimate;
+  readonly tonnes: Estimate | Dependent;
   readonly values: Readonly<Record<Compared, { readonly mean: number; readonly sd: number } | null>>;
 }
 
@@ -116,9 +117,8 @@ export function mayJoin(a: ChoiceZone, b: ChoiceZone, { together }: Pick<ChoiceR
   return a.variety === b.variety || together.some((varieties) => varieties.includes(a.variety) && varieties.includes(b.variety));
 }
 
-export function sumTonnes(zones: readonly ChoiceZone[]): Estimate {
-  const variance = zones.reduce((sum, { tonnes }) => sum + tonnes.standardError ** 2, 0);
-  return { value: zones.reduce((sum, { tonnes }) => sum + tonnes.value, 0), standardError: Math.sqrt(variance), df: Infinity };
+export function sumTonnes(zones: readonly ChoiceZone[]): Dependent {
+  return combineDependent(zones.map(({ tonnes }) => ({ factor: 1, estimate: asDependent(tonnes) })));
 }
 
 export function litresOf(zones: readonly ChoiceZone[], { litresPerT }: Pick<ChoiceRules, 'litresPerT'>): Estimate {

@@ -1,15 +1,18 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
+import { combineLinearly } from '../sampling/combineEstimates.ts';
 import type { Estimate } from '../sampling/precision.ts';
+import { asDependent, combineDependent, type Dependent } from './dependent.ts';
 
 /**
  * What a lot from several zones will be like: weighted by expected tonnes, with the error of the zone values and of the
- * tonnes themselves (first order). Where any tonnes are unknown all weights fall back to area, and that is said.
+ * tonnes themselves (first order); what zones have in common, such as a growth factor, errs for all of them at once and
+ * moves no weight. Where any tonnes are unknown all weights fall back to area, and that is said.
  */
 export interface LotPart {
   readonly zone: string;
   readonly areaHa: number;
   /** Null while nobody has estimated it. */
-  readonly tonnes: Estimate | null;
+  readonly tonnes: Estimate | Dependent | null;
   readonly value: Estimate;
 }
 
@@ -24,21 +27,14 @@ export interface LotValue extends Estimate {
 export function lotValue(parts: readonly LotPart[]): LotValue {
   const { shares, weighting, total } = lotShares(parts);
   const value = parts.reduce((sum, part, i) => sum + shares[i]! * part.value.value, 0);
-  let variance = 0;
-  let satterthwaite = 0;
-  const add = (term: number, df: number) => {
-    variance += term;
-    if (term > 0) satterthwaite += (term * term) / df;
-  };
-  parts.forEach((part, i) => {
-    add((shares[i]! * part.value.standardError) ** 2, part.value.df);
-    // A zone that is like the lot does not change it, however many tonnes it turns out to have.
-    if (weighting === 'tonnes') add((((part.value.value - value) * part.tonnes!.standardError) / total) ** 2, part.tonnes!.df);
-  });
+  const ofValues = combineLinearly(parts.map((part, i) => ({ factor: shares[i]!, estimate: part.value })));
+  // A zone that is like the lot does not change it, however many tonnes it turns out to have.
+  const ofWeights = weighting === 'tonnes' ? combineDependent(parts.map((part) => ({ factor: (part.value.value - value) / total, estimate: asDependent(part.tonnes!) }))) : null;
+  const { standardError, df } = ofWeights === null ? ofValues : combineLinearly([{ factor: 1, estimate: ofValues }, { factor: 1, estimate: ofWeights }]);
   return {
     value,
-    standardError: Math.sqrt(variance),
-    df: satterthwaite === 0 ? Infinity : (variance * variance) / satterthwaite,
+    standardError,
+    df,
     weighting,
     plainMean: parts.reduce((sum, part) => sum + part.value.value, 0) / parts.length,
     shares,
@@ -68,16 +64,7 @@ export function lotPh(parts: readonly LotPart[]): LotPh {
 }
 
 /** Tonnes of a lot; null when any part is unknown, since a sum of the rest would look complete. */
-export function lotTonnes(parts: readonly Pick<LotPart, 'tonnes'>[]): Estimate | null {
-  let value = 0;
-  let variance = 0;
-  let satterthwaite = 0;
-  for (const { tonnes } of parts) {
-    if (tonnes === null) return null;
-    value += tonnes.value;
-    const part = tonnes.standardError ** 2;
-    variance += part;
-    if (part > 0) satterthwaite += (part * part) / tonnes.df;
-  }
-  return { value, standardError: Math.sqrt(variance), df: satterthwaite === 0 ? Infinity : (variance * variance) / satterthwaite };
+export function lotTonnes(parts: readonly Pick<LotPart, 'tonnes'>[]): Dependent | null {
+  const known = parts.flatMap(({ tonnes }) => (tonnes === null ? [] : [{ factor: 1, estimate: asDependent(tonnes) }]));
+  return known.length < parts.length ? null : combineDependent(known);
 }

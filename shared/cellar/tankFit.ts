@@ -1,5 +1,5 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
-import { normalTails } from '../sampling/distributions.ts';
+import { normalTails, studentTTails } from '../sampling/distributions.ts';
 import { multiplyEstimates } from '../sampling/combineEstimates.ts';
 import type { Estimate } from '../sampling/precision.ts';
 
@@ -50,10 +50,11 @@ export interface TankFit {
   readonly overL: number;
 }
 
-/** Normal approximation. Example: 9920 L ± 1200 (95 %) into 12 000 L at 80 % → 30 %. */
+/** By the normal distribution, or Student's t where few readings stand behind the litres. Example: 9920 L ± 1200 (95 %) into 12 000 L at 80 % → 30 %. */
 export function fitTank(litres: Estimate, { volumeL, fillShare, minimumL = 0 }: Tank): TankFit {
   if (!(volumeL > 0 && fillShare > 0 && fillShare <= 1)) throw new AnalysisError('bad_tank', `A tank needs a volume above 0 and a fill between 0 and 1; got ${volumeL} L at ${fillShare}.`);
   const workingL = volumeL * fillShare;
-  const chanceBelow = (limit: number) => (litres.standardError === 0 ? (litres.value <= limit ? 1 : 0) : normalTails((limit - litres.value) / litres.standardError).lower);
+  const tails = (distance: number) => (Number.isFinite(litres.df) ? studentTTails(distance, litres.df) : normalTails(distance));
+  const chanceBelow = (limit: number) => (litres.standardError === 0 ? (litres.value <= limit ? 1 : 0) : tails((limit - litres.value) / litres.standardError).lower);
   return { workingL, chanceOfFit: chanceBelow(workingL), chanceBelowMinimum: minimumL > 0 ? chanceBelow(minimumL) : 0, overL: litres.value - workingL };
 }

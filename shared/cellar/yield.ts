@@ -1,12 +1,13 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
 import { checkConfidence } from '../sampling/margins.ts';
-import { criticalZ } from '../sampling/quantiles.ts';
+import { criticalT } from '../sampling/quantiles.ts';
 
 /**
  * Expected tonnes = places × (1 − missing) × clusters a vine × cluster weight × growth × (1 − losses)/10⁶, with its
  * error and the part that dominates it. Relative errors add in squares (first order; the exact product of independent
  * factors is given beside it). Growth is harvest weight over weight when counted: 1 at harvest, about 2 at lag phase,
- * where estimates with an assumed factor have missed by some 30 % (de la Fuente et al. 2015, abstract).
+ * where estimates with an assumed factor have missed by some 30 % (de la Fuente et al. 2015, abstract). Errors from few
+ * vines are known poorly themselves, so the width is Student's t with degrees of freedom after Satterthwaite 1946.
  */
 export const YIELD_PARTS = ['vines', 'clusters', 'clusterWeight', 'growth', 'losses'] as const;
 export type YieldPart = (typeof YIELD_PARTS)[number];
@@ -20,6 +21,8 @@ export interface YieldQuestion {
   readonly lossShare?: number;
   /** Relative standard errors; a part left out is taken as exact. */
   readonly relativeErrors: Partial<Record<YieldPart, number>>;
+  /** Of each relative error, such as n − 1; a part left out counts as well known. */
+  readonly degreesOfFreedom?: Partial<Record<YieldPart, number>>;
   readonly confidence: number;
   /** Correlation of the errors of clusters a vine and cluster weight; vines with many clusters have lighter ones. */
   readonly clusterCorrelation?: number;
@@ -34,6 +37,7 @@ export interface YieldEstimate {
   readonly relativeError: number;
   readonly relativeErrorExact: number;
   readonly standardErrorT: number;
+  readonly df: number;
   readonly halfWidthT: number;
   readonly lowerT: number;
   readonly upperT: number;
@@ -60,7 +64,9 @@ export function estimateYield(question: YieldQuestion): YieldEstimate {
   const shared = 2 * (question.clusterCorrelation ?? 0) * clusters * clusterWeight;
   const relativeError = Math.sqrt(Math.max(0, total + shared));
   const parts = squares.map(({ part, square }) => ({ part, share: total > 0 ? square / total : 0 })).sort((a, b) => b.share - a.share);
-  const statistical = criticalZ(confidence) * relativeError;
+  const satterthwaite = squares.reduce((sum, { part, square }) => sum + (square * square) / (question.degreesOfFreedom?.[part] ?? Infinity), 0);
+  const df = satterthwaite === 0 ? Infinity : (total * total) / satterthwaite;
+  const statistical = criticalT(confidence, df) * relativeError;
   const widenedForGrowth = question.growthIsAssumed === true && statistical < ASSUMED_GROWTH_HALF_WIDTH;
   const halfWidthT = tonnes * (widenedForGrowth ? ASSUMED_GROWTH_HALF_WIDTH : statistical);
   return {
@@ -70,6 +76,7 @@ export function estimateYield(question: YieldQuestion): YieldEstimate {
     relativeError,
     relativeErrorExact: Math.sqrt(squares.reduce((product, { square }) => product * (1 + square), 1) - 1),
     standardErrorT: tonnes * relativeError,
+    df,
     halfWidthT,
     lowerT: Math.max(0, tonnes - halfWidthT),
     upperT: tonnes + halfWidthT,

@@ -6,6 +6,11 @@ export const wineTypes = ['red', 'white', 'rose'] as const;
 export const wineType = z.enum(wineTypes);
 export type WineType = z.infer<typeof wineType>;
 
+/** Ways to potential alcohol that need no more than °Brix. */
+export const brixMethods = ['brixFactor', 'solidsLessAllowance'] as const;
+export type BrixMethod = (typeof brixMethods)[number];
+export const alcoholChoice = z.object({ method: z.enum(brixMethods) });
+
 /** A figure with its range; `kind` says whether it was measured, estimated or assumed. */
 export const figure = z.object({
   value: z.number(),
@@ -14,6 +19,8 @@ export const figure = z.object({
   n: z.number().int().nullable(),
   confidence: z.number(),
   kind: z.enum(['measured', 'estimated', 'assumed']),
+  /** Standard errors by the factor they come from, such as one growth factor for all zones of a variety: figures that name the same factor are wrong together. */
+  shared: z.record(z.string(), z.number()).optional(),
 });
 export type Figure = z.infer<typeof figure>;
 
@@ -59,7 +66,7 @@ export const lotSummary = z.object({
   phViaHydrogen: z.number().nullable(),
   ta: figure.nullable(),
   weighting: z.enum(['tonnes', 'area']).nullable(),
-  alcohol: z.object({ method: z.string(), low: z.number(), middle: z.number(), high: z.number() }).nullable(),
+  alcohol: z.object({ method: z.enum(brixMethods), low: z.number(), middle: z.number(), high: z.number() }).nullable(),
   /** As the tank would read it, by the estate's learned offset; null while that is off. */
   tankBrix: z.object({ figure, offset: z.number() }).nullable(),
   /** Lots that the litres a tonne were learned from; null for the custom of the trade. */
@@ -102,6 +109,8 @@ export const lotsBoard = z.object({
   scenarios: z.array(z.object({ id, name: z.string(), isLive: z.boolean() })),
   seasonId: id,
   confidence: z.number(),
+  /** The estate's way to potential alcohol, as it was on the day shown. */
+  alcoholMethod: z.enum(brixMethods),
   zones: z.array(lotZone),
   lots: z.array(lotView),
   tanks: z.array(tankView),
@@ -109,6 +118,8 @@ export const lotsBoard = z.object({
   mayLift: z.array(z.string()),
   /** The day it is shown as of, or null for now. */
   knownOn: z.string().nullable(),
+  /** First day from which changes of the vine census are kept, where that is after `knownOn`: before it a vine is known by its last entry only. */
+  censusFrom: z.string().nullable(),
 });
 export type LotsBoard = z.infer<typeof lotsBoard>;
 

@@ -82,6 +82,16 @@ describe('potential alcohol', () => {
     expect(potentialAlcohol(sugar(240), 'measuredSugar', at17).middle).toBeCloseTo(14.1176, 4);
   });
 
+  it('spans the range of a published table', () => {
+    // Table of a technical column (scribd.com/document/456689396): 180 to 210 g/L, at 18.0 to 16.5 g/L for 1 %
+    const printed = [[180, 10.0, 10.9], [190, 10.6, 11.5], [200, 11.1, 12.1], [210, 11.7, 12.7]] as const;
+    for (const [gramsPerL, low, high] of printed) {
+      const range = potentialAlcohol(sugar(gramsPerL), 'measuredSugar');
+      expect(Math.abs(range.low - low)).toBeLessThanOrEqual(0.06);
+      expect(Math.abs(range.high - high)).toBeLessThanOrEqual(0.06);
+    }
+  });
+
   it('divides measured sugar by 16.83', () => {
     // EU convention as quoted by secondary pages
     const measured = potentialAlcohol(sugar(240), 'measuredSugar');

@@ -1,3 +1,4 @@
+import { sumFigures } from '../../../shared/cellar/dependent.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
 import { closePage, innerWidth, margin, openPage, paragraph, printable, faint } from './reportPage.ts';
 import { seasonLetterTexts, type LetterLanguage } from './seasonLetterTexts.ts';
@@ -56,7 +57,7 @@ function weighedSentences(letter: SeasonLetter): string[] {
   const zones = letter.zones.filter(({ forecastOn }) => forecastOn === last);
   if (last === undefined) return [texts.nothingWeighed];
   const total = (of: (zone: (typeof zones)[number]) => number) => zones.reduce((sum, zone) => sum + of(zone), 0);
-  const half = Math.sqrt(total(({ forecast }) => (forecast.halfWidth ?? 0) ** 2));
+  const { halfWidth: half } = sumFigures(zones.map(({ forecast }) => ({ factor: 1, figure: forecast })));
   const held = zones.filter((zone) => zone.held === true).length;
   const heldText = held === zones.length ? texts.held : held === 0 ? texts.missed : filled(texts.heldSome, { held, n: zones.length });
   const said = [filled(texts.expected, { day: dayText(letter, new Date(`${last}T12:00:00Z`)), forecast: tonnesText(letter, total(({ forecast }) => forecast.value), half), actual: tonnesText(letter, total(({ actualT }) => actualT), null), held: heldText })];

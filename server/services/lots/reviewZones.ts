@@ -1,3 +1,4 @@
+import { scaled } from '../../../shared/cellar/dependent.ts';
 import { errorParts, type ErrorPart, type ErrorShare } from '../../../shared/cellar/errorParts.ts';
 import type { ReviewView, TicketSplit } from '../../../shared/contracts/tickets.ts';
 import { isBearing } from '../../ground/blockVines.ts';
@@ -27,7 +28,7 @@ export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]
     });
   });
   const zones = all.map(({ block, number, weighed, forecastOn, outlook }): ReviewedZone => {
-    const forecast = figureOf({ ...outlook.tonnes, value: outlook.tonnes.value * weighed.share, standardError: outlook.tonnes.standardError * weighed.share }, { n: null, kind: 'estimated' });
+    const forecast = figureOf(scaled(outlook.tonnes, weighed.share), { n: null, kind: 'estimated' });
     const actualT = weighed.kg / 1000;
     return { blockId: block.ground.block.id, blockName: block.ground.block.name, zone: number, forecastOn, forecast, actualT, how: weighed.how, held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth };
   });

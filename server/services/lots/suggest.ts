@@ -1,3 +1,4 @@
+import { scaled } from '../../../shared/cellar/dependent.ts';
 import { isPressed, type ChoiceRules, type ChoiceTank, type ChoiceZone, type LotChoice } from '../../../shared/cellar/lotChoices.ts';
 import { whyLeftOut, whyPlaced } from '../../../shared/cellar/lotReasons.ts';
 import { pickDays, type DayRoom } from '../../../shared/cellar/pickDays.ts';
@@ -99,7 +100,7 @@ function freeZones(ground: BoardGround, how: { kept: readonly Lot[]; asked: NewS
       return [{
         id: zone.id, name: `${block.ground.block.name} ${zone.number}`, variety: block.ground.block.variety,
         wineType: how.asked.wines[block.ground.block.variety] ?? 'red',
-        tonnes: { ...outlook.tonnes, value: outlook.tonnes.value * share, standardError: outlook.tonnes.standardError * share },
+        tonnes: scaled(outlook.tonnes, share),
         values: { brix: value('brix'), ph: value('ph'), ta: value('ta') },
         rowIds: taken.size === 0 ? null : [...new Set(free.map((vine) => block.ground.stored[block.ground.vines.row[vine]!]!.id))],
         earliest: how.earliest.get(block.ground.block.id) ?? null,
@@ -113,14 +114,11 @@ async function earliestDays(estateId: string, firstDay: string): Promise<Map<str
   const { timeZone } = await Estate.query().findById(estateId).throwIfNotFound();
   const rows = (await EntryRestriction.query()
     .where({ estateId })
-    .whereNull('liftedAt')
-    .where('endsAt', '>', firstDay)
-    .orWhere((own) => own.where({ estateId }).whereNull('liftedAt').where('noPickBefore', '>', firstDay))
-    .select('blockId', 'noPickBefore', EntryRestriction.raw("to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') as \"openOn\"", [timeZone]))) as unknown as { blockId: string; noPickBefore: string | null; openOn: string }[];
+    .where((holds) => holds.where((closed) => closed.whereNull('liftedAt').where('endsAt', '>', firstDay)).orWhere('noPickBefore', '>', firstDay))
+    .select('blockId', 'noPickBefore', EntryRestriction.raw("case when lifted_at is null then to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') end as \"openOn\"", [timeZone]))) as unknown as { blockId: string; noPickBefore: string | null; openOn: string | null }[];
   const first = new Map<string, string>();
   for (const { blockId, noPickBefore, openOn } of rows) {
-    const day = noPickBefore !== null && noPickBefore > openOn ? noPickBefore : openOn;
-    if (day > (first.get(blockId) ?? '')) first.set(blockId, day);
+    for (const day of [noPickBefore, openOn]) if (day !== null && day > (first.get(blockId) ?? '')) first.set(blockId, day);
   }
   return first;
 }

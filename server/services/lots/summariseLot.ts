@@ -1,9 +1,10 @@
 import { potentialAlcohol } from '../../../shared/cellar/alcohol.ts';
+import { scaled, timesShared, type Dependent } from '../../../shared/cellar/dependent.ts';
 import { nextLot } from '../../../shared/cellar/learnFactor.ts';
 import { lotLikeness, type LikenessPart } from '../../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../../shared/cellar/lots.ts';
-import { fitTank, litreHints, litresFrom } from '../../../shared/cellar/tankFit.ts';
-import type { LotSummary, TankView, WineType } from '../../../shared/contracts/lots.ts';
+import { fitTank, litreHints } from '../../../shared/cellar/tankFit.ts';
+import type { BrixMethod, LotSummary, TankView, WineType } from '../../../shared/contracts/lots.ts';
 import { combineLinearly } from '../../../shared/sampling/combineEstimates.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import { criticalT } from '../../../shared/sampling/quantiles.ts';
@@ -26,13 +27,13 @@ export interface LotShare {
 type MeasuredCode = 'brix' | 'ph' | 'ta';
 
 /** What a lot is expected to be: area, tonnes, composition, alcohol if all sugar ferments, litres and whether they fit. */
-export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank: TankView | null; factors: UsedFactors }): LotSummary {
+export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank: TankView | null; factors: UsedFactors; alcoholMethod: BrixMethod }): LotSummary {
   const tonnes = shares.length === 0 ? null : lotTonnes(shares.map((share) => ({ tonnes: tonnesOf(share) })));
   const brix = valueOf(shares, 'brix', lotValue);
   const ph = valueOf(shares, 'ph', lotPh);
   const ta = valueOf(shares, 'ta', lotValue);
-  const mustL = tonnes && litresFrom(tonnes, mustPerTonne(how.wineType, how.factors));
-  const wineL = tonnes && litresFrom(tonnes, winePerTonne(how.wineType, how.factors));
+  const mustL = tonnes && timesShared(tonnes, mustPerTonne(how.wineType, how.factors), `must ${how.wineType}`);
+  const wineL = tonnes && timesShared(tonnes, winePerTonne(how.wineType, how.factors), `wine ${how.wineType}`);
   const tankBrix = brix && inTank(brix.value, shares, how.factors);
   const told = tankBrix?.brix ?? brix?.value ?? null;
   const brixHalf = told === null ? null : criticalT(boardConfidence, Math.max(1, told.df)) * told.standardError;
@@ -49,7 +50,7 @@ export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank
     weighting: brix?.value.weighting ?? null,
     tankBrix: tankBrix && { figure: figureOf(tankBrix.brix, { n: tankBrix.n, kind: 'estimated' }), offset: tankBrix.offset },
     litreSource: { must: how.factors.mustL.get(how.wineType)?.n ?? null, wine: how.factors.wineL.get(how.wineType)?.n ?? null },
-    alcohol: told === null || brixHalf === null || !Number.isFinite(brixHalf) ? null : potentialAlcohol({ lower: told.value - brixHalf, value: told.value, upper: told.value + brixHalf }, 'brixFactor'),
+    alcohol: told === null || brixHalf === null || !Number.isFinite(brixHalf) ? null : { ...potentialAlcohol({ lower: told.value - brixHalf, value: told.value, upper: told.value + brixHalf }, how.alcoholMethod), method: how.alcoholMethod },
     mustL: mustL && figureOf(mustL, { n: null, kind: 'estimated' }),
     wineL: wineL && figureOf(wineL, { n: null, kind: 'estimated' }),
     betweenShare: likeness(shares),
@@ -69,8 +70,8 @@ function isKnown({ outlook }: LotShare, code: MeasuredCode): boolean {
   return outlook.latest[code] !== null && Number.isFinite(outlook.latest[code].estimate.standardError);
 }
 
-function tonnesOf({ outlook, share }: LotShare): Estimate {
-  return { value: outlook.tonnes.value * share, standardError: outlook.tonnes.standardError * share, df: outlook.tonnes.df };
+function tonnesOf({ outlook, share }: LotShare): Dependent {
+  return scaled(outlook.tonnes, share);
 }
 
 /** The part with the largest share of the squared error over all zones of the lot. */

@@ -1,5 +1,6 @@
-import { ASSUMED_GROWTH_HALF_WIDTH, estimateYield, type YieldEstimate, type YieldPart } from '../../../shared/cellar/yield.ts';
+import { ASSUMED_GROWTH_HALF_WIDTH, estimateYield, YIELD_PARTS, type YieldEstimate, type YieldPart } from '../../../shared/cellar/yield.ts';
 import { nextLot, type LearnedFactor } from '../../../shared/cellar/learnFactor.ts';
+import { dependent, type Dependent, type ErrorTerm } from '../../../shared/cellar/dependent.ts';
 import type { Figure, LotZone } from '../../../shared/contracts/lots.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import { criticalT } from '../../../shared/sampling/quantiles.ts';
@@ -36,7 +37,7 @@ export interface ZoneOutlook {
   vines: number;
   bearing: number;
   yield: YieldEstimate;
-  tonnes: Estimate;
+  tonnes: Dependent;
   parts: LotZone['yieldParts'];
   latest: Record<'brix' | 'ph' | 'ta', VisitMean | null>;
   latestOn: string | null;
@@ -59,7 +60,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
     const beforeVeraison = weight !== null && season.phases.veraison !== undefined && weight.visit < season.phases.veraison[0];
     const variety = ground.block.variety;
     const growth = beforeVeraison ? (input.factors.growth.get(variety) ?? 'assumed') : 'none';
-    const parts = yieldParts({ clusters, weight, measureOf, growth, losses: input.factors.losses.get(variety) ?? null, counted: ground.block.census === 'full' });
+    const parts = yieldParts({ clusters, weight, measureOf, growth, losses: input.factors.losses.get(variety) ?? null, counted: ground.block.census === 'full', block: ground.block });
     const estimate = estimateYield({
       places: indexes.length,
       missingShare: indexes.length === 0 ? 0 : 1 - bearing / indexes.length,
@@ -68,6 +69,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
       growthFactor: parts.value('growth'),
       lossShare: parts.value('losses'),
       relativeErrors: parts.errors,
+      degreesOfFreedom: parts.df,
       confidence: boardConfidence,
       growthIsAssumed: growth === 'assumed',
     });
@@ -79,7 +81,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
       vines: indexes.length,
       bearing,
       yield: estimate,
-      tonnes: { value: estimate.tonnes, standardError: Math.max(estimate.standardErrorT, estimate.halfWidthT / criticalT(boardConfidence, Infinity)), df: Infinity },
+      tonnes: tonnesOf(estimate, parts),
       parts: estimate.parts.map(({ part, share }) => ({ part, share, kind: parts.kind(part), value: part === 'vines' ? bearing : parts.value(part), n: parts.n(part) })),
       latest,
       unchecked,
@@ -94,39 +96,73 @@ function newestVisit(readings: ZonedReading[], bearing: number): VisitMean | nul
   return day === null ? null : visitMean(readings.filter((reading) => reading.visit === day), bearing);
 }
 
-function yieldParts(facts: { clusters: VisitMean | null; weight: VisitMean | null; measureOf: (code: string) => MeasureRecord; growth: LearnedFactor | 'assumed' | 'none'; losses: LearnedFactor | null; counted: boolean }) {
-  const assumed = (code: string) => {
-    const measure = facts.measureOf(code);
-    return { value: measure.typicalMean, relativeError: measure.spreadKind === 'cv' ? measure.spreadValue : measure.spreadValue / measure.typicalMean };
+interface PartFacts {
+  value: number;
+  relativeError: number;
+  df: number;
+  kind: 'measured' | 'assumed';
+  n: number | null;
+  /** What errs in the same way in every zone that names it; null for what the zone has to itself. */
+  sharedAs: string | null;
+}
+type Parts = ReturnType<typeof yieldParts>;
+
+function yieldParts(facts: { clusters: VisitMean | null; weight: VisitMean | null; measureOf: (code: string) => MeasureRecord; growth: LearnedFactor | 'assumed' | 'none'; losses: LearnedFactor | null; counted: boolean; block: { id: string; variety: string } }) {
+  const { block } = facts;
+  const told = (mean: VisitMean | null, code: string): PartFacts => {
+    if (mean !== null && mean.estimate.standardError >= 0 && mean.estimate.value > 0) {
+      return { value: mean.estimate.value, relativeError: mean.estimate.standardError / mean.estimate.value, df: mean.estimate.df, kind: 'measured', n: mean.n, sharedAs: null };
+    }
+    const { typicalMean, spreadKind, spreadValue } = facts.measureOf(code);
+    return { value: typicalMean, relativeError: spreadKind === 'cv' ? spreadValue : spreadValue / typicalMean, df: Infinity, kind: 'assumed', n: null, sharedAs: `${code} ${block.id}` };
   };
-  const told = (mean: VisitMean | null, code: string) => {
-    if (mean === null || !(mean.estimate.standardError >= 0) || mean.estimate.value <= 0) return { ...assumed(code), kind: 'assumed' as const, n: null };
-    return { value: mean.estimate.value, relativeError: mean.estimate.standardError / mean.estimate.value, kind: 'measured' as const, n: mean.n };
-  };
-  const table: Record<YieldPart, { value: number; relativeError: number; kind: 'measured' | 'assumed'; n: number | null }> = {
-    vines: { value: 0, relativeError: facts.counted ? 0 : uncountedVines, kind: facts.counted ? 'measured' : 'assumed', n: null },
+  const table: Record<YieldPart, PartFacts> = {
+    vines: { value: 0, relativeError: facts.counted ? 0 : uncountedVines, df: Infinity, kind: facts.counted ? 'measured' : 'assumed', n: null, sharedAs: `vines ${block.id}` },
     clusters: told(facts.clusters, 'clusterCount'),
     clusterWeight: told(facts.weight, 'clusterWeight'),
-    growth: growthPart(facts.growth),
-    losses: facts.losses === null ? { value: assumedLosses.share, relativeError: assumedLosses.relativeError, kind: 'assumed', n: null } : { value: facts.losses.mean, relativeError: nextLot(facts.losses).standardError / (1 - facts.losses.mean), kind: 'measured', n: facts.losses.n },
+    growth: growthPart(facts.growth, block.variety),
+    losses: lossesPart(facts.losses, block.variety),
   };
+  const each = (of: 'relativeError' | 'df') => Object.fromEntries(Object.entries(table).map(([part, one]) => [part, one[of]])) as Record<YieldPart, number>;
   return {
     value: (part: YieldPart) => table[part].value,
     kind: (part: YieldPart) => table[part].kind,
     n: (part: YieldPart) => table[part].n,
-    errors: Object.fromEntries(Object.entries(table).map(([part, { relativeError }]) => [part, relativeError])) as Record<YieldPart, number>,
+    sharedAs: (part: YieldPart) => table[part].sharedAs,
+    errors: each('relativeError'),
+    df: each('df'),
   };
 }
 
-function growthPart(growth: LearnedFactor | 'assumed' | 'none'): { value: number; relativeError: number; kind: 'measured' | 'assumed'; n: number | null } {
-  if (growth === 'none') return { value: 1, relativeError: 0, kind: 'measured', n: null };
+function growthPart(growth: LearnedFactor | 'assumed' | 'none', variety: string): PartFacts {
+  if (growth === 'none') return { value: 1, relativeError: 0, df: Infinity, kind: 'measured', n: null, sharedAs: null };
   // The width of an assumed growth factor is the ± 30 % that such estimates have missed by, as a 95 % limit.
-  if (growth === 'assumed') return { value: assumedGrowth, relativeError: ASSUMED_GROWTH_HALF_WIDTH / criticalT(boardConfidence, Infinity), kind: 'assumed', n: null };
-  return { value: growth.mean, relativeError: nextLot(growth).standardError / growth.mean, kind: 'measured', n: growth.n };
+  if (growth === 'assumed') return { value: assumedGrowth, relativeError: ASSUMED_GROWTH_HALF_WIDTH / criticalT(boardConfidence, Infinity), df: Infinity, kind: 'assumed', n: null, sharedAs: 'growth' };
+  const next = nextLot(growth);
+  return { value: growth.mean, relativeError: next.standardError / growth.mean, df: next.df, kind: 'measured', n: growth.n, sharedAs: `growth ${variety}` };
+}
+
+function lossesPart(losses: LearnedFactor | null, variety: string): PartFacts {
+  if (losses === null) return { value: assumedLosses.share, relativeError: assumedLosses.relativeError, df: Infinity, kind: 'assumed', n: null, sharedAs: 'losses' };
+  const next = nextLot(losses);
+  return { value: losses.mean, relativeError: next.standardError / (1 - losses.mean), df: next.df, kind: 'measured', n: losses.n, sharedAs: `losses ${variety}` };
+}
+
+/** Tonnes with what the zone has to itself and what it shares with others apart. */
+function tonnesOf({ tonnes }: YieldEstimate, parts: Parts): Dependent {
+  const own: ErrorTerm[] = [];
+  const shared: Record<string, ErrorTerm> = {};
+  for (const part of YIELD_PARTS) {
+    const term = { standardError: tonnes * parts.errors[part], df: parts.df[part] };
+    const key = parts.sharedAs(part);
+    if (key === null) own.push(term);
+    else if (term.standardError > 0) shared[key] = term;
+  }
+  return dependent(tonnes, own, shared);
 }
 
 /** An estimate as a figure for the screen. */
-export function figureOf(estimate: Estimate, how: { n: number | null; kind: Figure['kind'] }): Figure {
+export function figureOf(estimate: Estimate | Dependent, how: { n: number | null; kind: Figure['kind'] }): Figure {
   const known = Number.isFinite(estimate.standardError);
   return {
     value: estimate.value,
@@ -135,5 +171,6 @@ export function figureOf(estimate: Estimate, how: { n: number | null; kind: Figu
     n: how.n,
     confidence: boardConfidence,
     kind: how.kind,
+    ...('shared' in estimate ? { shared: Object.fromEntries(Object.entries(estimate.shared).map(([key, { standardError }]) => [key, standardError])) } : {}),
   };
 }

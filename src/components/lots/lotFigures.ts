@@ -1,4 +1,5 @@
 import type { Figure, LotView, TankView } from '../../../shared/contracts/lots.ts';
+import { sumFigures, type SharingFigure } from '../../../shared/cellar/dependent.ts';
 import { fitTank, type TankFit } from '../../../shared/cellar/tankFit.ts';
 import type { Format } from '../../lib/format.ts';
 import { decimalsOf, shownValue, type Quantity } from '../../lib/units.ts';
@@ -42,17 +43,18 @@ export interface TankLoad {
   /** Must of all lots in the tank; null while it is empty or nothing is known. */
   readonly must: { readonly value: number; readonly low: number; readonly high: number } | null;
   readonly fit: TankFit | null;
+  /** The must with what it shares with other tanks. */
+  readonly sum: SharingFigure | null;
 }
 
-/** What goes into each tank: lots that share a tank are added up, their errors in squares. */
+/** What goes into each tank: lots that share a tank are added up. */
 export function tankLoads(tanks: readonly TankView[], lots: readonly LotView[]): TankLoad[] {
   return tanks.map((tank) => {
     const inside = lots.filter((lot) => lot.tankId === tank.id && lot.summary.mustL !== null);
-    if (inside.length === 0) return { tank, lots: [], must: null, fit: null };
-    const value = inside.reduce((sum, lot) => sum + lot.summary.mustL!.value, 0);
-    const root = (part: 'halfWidth' | 'standardError') => Math.sqrt(inside.reduce((sum, lot) => sum + (lot.summary.mustL![part] ?? 0) ** 2, 0));
-    const half = root('halfWidth');
-    const fit = fitTank({ value, standardError: root('standardError'), df: Infinity }, { volumeL: tank.litres, fillShare: tank.workingFill, minimumL: tank.litres * tank.minimumFill });
-    return { tank, lots: inside, must: { value, low: Math.max(0, value - half), high: value + half }, fit };
+    if (inside.length === 0) return { tank, lots: [], must: null, fit: null, sum: null };
+    const sum = sumFigures(inside.map((lot) => ({ factor: 1, figure: lot.summary.mustL! })));
+    const { value, halfWidth: half } = sum;
+    const fit = fitTank({ value, standardError: sum.standardError, df: Infinity }, { volumeL: tank.litres, fillShare: tank.workingFill, minimumL: tank.litres * tank.minimumFill });
+    return { tank, lots: inside, must: { value, low: Math.max(0, value - half), high: value + half }, fit, sum };
   });
 }

@@ -7,11 +7,14 @@ import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import type { BlockRows } from '../../shared/geo/rows.ts';
 import { rowsFromStored } from '../../shared/geo/storedRows.ts';
 import { vineIndex, vineTable, type VineTable } from '../../shared/geo/vines.ts';
+import { AuditEntry } from '../models/AuditEntry.ts';
 import { Block } from '../models/Block.ts';
 import { BlockRow } from '../models/BlockRow.ts';
 import { asGeoJson } from '../models/geometry.ts';
 import { Vine } from '../models/Vine.ts';
+import { marksAt } from '../models/VineHistory.ts';
 import type { Zoning } from '../models/Zoning.ts';
+import { estateDay } from './estateDay.ts';
 
 /** All vines of a block as the calculations take them, with the stored rows they belong to. */
 export interface BlockVines {
@@ -28,9 +31,23 @@ export interface BlockVines {
 
 /** Loads a block's outline, rows and known vines in three queries and lays its vines out. */
 export async function loadBlockVines(estateId: string, blockId: string, trx?: TransactionOrKnex): Promise<BlockVines> {
+  return layOut(await findGround(estateId, blockId, trx), await Vine.query(trx).where({ estateId, blockId, proposed: false }));
+}
+
+/** A block with its rows of today and the vine census as it stood at a moment. */
+export async function loadBlockVinesAt(estateId: string, blockId: string, until: Date): Promise<BlockVines> {
+  const found = await findGround(estateId, blockId);
+  found.block.census = await censusAt(found.block, until);
+  return layOut(found, await marksAt(estateId, blockId, until));
+}
+
+async function findGround(estateId: string, blockId: string, trx?: TransactionOrKnex): Promise<{ block: Block; stored: BlockRow[] }> {
   const block = await Block.query(trx).findOne({ estateId, id: blockId }).select('blocks.*', asGeoJson('boundary', 9).as('boundary')).throwIfNotFound();
   const stored = await BlockRow.query(trx).where({ estateId, blockId }).whereNull('retiredAt').orderBy('ordinal').select('id', 'ordinal', 'label', 'labelWas', 'vineCount', 'pieces');
-  const known = await Vine.query(trx).where({ estateId, blockId, proposed: false });
+  return { block, stored };
+}
+
+function layOut({ block, stored }: { block: Block; stored: BlockRow[] }, known: readonly Pick<Vine, 'rowId' | 'ordinal' | 'state'>[]): BlockVines {
   const boundary = (block.boundary as MultiPolygon).coordinates as unknown as MultiPolygonLonLat;
   const rows = rowsFromStored({ boundary, rowBearingDeg: block.rowBearingDeg, epsg: block.epsg }, stored as never);
   const vines = vineTable(rows);
@@ -41,6 +58,20 @@ export async function loadBlockVines(estateId: string, blockId: string, trx?: Tr
     if (index >= 0) states[index] = vine.state;
   }
   return { block, boundary, stored, rows, vines, states, rowIndexOf };
+}
+
+/** How far the census of a block had come at a moment. */
+async function censusAt(block: Block, until: Date): Promise<Block['census']> {
+  if (block.censusAt === null || block.censusAt <= until) return block.census;
+  const entries = await AuditEntry.query().where({ estateId: block.estateId, action: 'census.change', subjectId: block.id }).where('at', '<=', until).select('after');
+  if (entries.length === 0) return 'unknown';
+  return entries.some(({ after }) => (after as { complete?: boolean } | null)?.complete === true) ? 'full' : 'partial';
+}
+
+/** The day from which the census of these blocks is known change by change, where that is after `until`; else null. */
+export async function censusKnownFrom(estateId: string, blocks: readonly Pick<Block, 'censusKeptSince'>[], until: Date | null): Promise<string | null> {
+  const since = blocks.flatMap(({ censusKeptSince }) => censusKeptSince ?? []).sort((a, b) => b.getTime() - a.getTime())[0];
+  return until === null || since === undefined || since <= until ? null : estateDay(estateId, since);
 }
 
 /** The grid of a block as it is now. */

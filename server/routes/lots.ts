@@ -1,9 +1,10 @@
 import { Router, type Request } from 'express';
 import { z } from 'zod';
 import { id, isoDate } from '../../shared/contracts/common.ts';
-import { dayCapacity, lotChange, lotParts, newLot, newScenario, newTank, tankChange, zoneMove } from '../../shared/contracts/lots.ts';
+import { alcoholChoice, dayCapacity, lotChange, lotParts, newLot, newScenario, newTank, tankChange, zoneMove } from '../../shared/contracts/lots.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { todayOf } from '../services/estates.ts';
+import { chooseAlcoholMethod } from '../services/lots/alcoholMethod.ts';
 import { listTanks, lotsBoard } from '../services/lots/board.ts';
 import { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { listCapacities, setCapacity } from '../services/lots/capacities.ts';
@@ -17,7 +18,7 @@ import { versionMatched } from './etag.ts';
 
 const boardQuery = z.object({ scenario: id.optional(), known: isoDate.optional() });
 const resultsQuery = z.object({ season: id.optional() });
-const ripeningQuery = z.object({ known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
+const ripeningQuery = z.object({ season: id.optional(), known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
 
 const today = (request: Request) => todayOf(accessOf(request), new Date());
 
@@ -30,8 +31,8 @@ export function lotRoutes(): Router {
     response.json(await zoneResults(accessOf(request), idParam(request, 'zoningId'), season ? { seasonId: season } : {}));
   });
   router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
-    const { known, unchecked } = ripeningQuery.parse(request.query);
-    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: await today(request), knownOn: known ?? null, unchecked }));
+    const { season, known, unchecked } = ripeningQuery.parse(request.query);
+    response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: await today(request), knownOn: known ?? null, unchecked, seasonId: season ?? null }));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {
@@ -84,6 +85,11 @@ export function lotRoutes(): Router {
   });
   router.put('/day-capacities', allow('lots.build', 'propose'), async (request, response) => {
     await setCapacity(accessOf(request), dayCapacity.parse(request.body));
+    response.status(204).end();
+  });
+
+  router.put('/alcohol-method', allow('lots.confirm'), async (request, response) => {
+    await chooseAlcoholMethod(accessOf(request), alcoholChoice.parse(request.body).method);
     response.status(204).end();
   });
 

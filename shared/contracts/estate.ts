@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { phaseIds } from '../season/phases.ts';
+import { brixMethods } from './lots.ts';
 import { id, isoDate, language, pointGeometry, shortName, units } from './common.ts';
 
 /** Numbers an estate sets for itself; each has a stated starting value. */
@@ -16,6 +17,8 @@ export const estateSettings = z.object({
   crewSeeResults: z.boolean().default(false),
   emergencyNumber: z.string().max(40).default('112'),
   meetingPoint: z.string().max(200).default(''),
+  /** How potential alcohol is reckoned from °Brix, for everybody; changed by those who confirm lots. */
+  alcoholMethod: z.enum(brixMethods).default('brixFactor'),
 });
 export type EstateSettings = z.infer<typeof estateSettings>;
 
@@ -38,7 +41,7 @@ export const newEstate = z.object({
 });
 export type NewEstate = z.infer<typeof newEstate>;
 
-export const estateChange = newEstate.partial().extend({ settings: estateSettings.partial().optional() });
+export const estateChange = newEstate.partial().extend({ settings: estateSettings.omit({ alcoholMethod: true }).partial().optional() });
 
 /** What the owner is shown of backups: when the last good one was made, and when one was last read back for a trial. */
 export const backupView = z.object({ lastAt: z.string().nullable(), rows: z.int(), files: z.int(), drillAt: z.string().nullable(), drillOk: z.boolean().nullable() });

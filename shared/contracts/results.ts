@@ -94,11 +94,17 @@ export const ripeningSeries = z.object({
 export type RipeningSeries = z.infer<typeof ripeningSeries>;
 
 export const ripeningView = resultsView.extend({
+  /** Season of the readings; `zonesFrom` names the season whose zones they are read by where it had none, nothing is forecast once it is over. */
+  season: z.object({ id, name: z.string(), startsOn: z.string(), endsOn: z.string(), isOver: z.boolean(), zonesFrom: z.string().nullable() }),
+  /** All seasons, newest first, with the readings that this block has in each. */
+  seasons: z.array(z.object({ id, name: z.string(), readings: z.int() })),
   series: z.array(ripeningSeries),
   /** How often the forecasts of this season beat "no change", and how often their band held, by measure. */
   record: z.array(z.object({ measure: z.string(), n: z.number().int(), better: z.number().int(), held: z.number().int(), few: z.boolean() })),
   /** The day it is shown as of, or null for now. */
   knownOn: z.string().nullable(),
+  /** First day from which changes of the vine census are kept, where that is after `knownOn`. */
+  censusFrom: z.string().nullable(),
   /** Figures of the lab that nobody has checked: how many there are, and whether they count here. */
   unchecked: z.object({ basis: z.enum(['out', 'in']), n: z.number().int() }),
   /** Wet fruit, rain and heat beside each visit. */

@@ -1,7 +1,7 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
-import type { CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
+import type { BrixMethod, CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
 import type { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { http } from '../lib/http.ts';
 import { inOrder } from '../lib/inOrder.ts';
@@ -104,6 +104,11 @@ export const useLotsStore = defineStore('lots', () => {
     await loadCapacities(estateId);
   }
 
+  async function chooseAlcohol(method: BrixMethod): Promise<void> {
+    await http.put(`${base()}/alcohol-method`, { method });
+    await again();
+  }
+
   async function loadDecisions(lotId: string): Promise<void> {
     await newestDecisions(() => http.get<{ items: DecisionView[] }>(`${base()}/lots/${lotId}/decisions`), ({ items }) => (decisions.value = items));
   }
@@ -118,5 +123,5 @@ export const useLotsStore = defineStore('lots', () => {
     await again();
   }
 
-  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, reopen, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, loadDecisions, addTank, retireTank };
+  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, reopen, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, chooseAlcohol, loadDecisions, addTank, retireTank };
 });

@@ -19,12 +19,12 @@ export const useRipenessStore = defineStore('ripeness', () => {
   const newest = inOrder();
 
   /**
-   * `knownOn`: as it stood on that day; empty for now. `unchecked`: whether figures of the lab that nobody has checked
+   * `season`: null for that of the zones in force. `knownOn`: as it stood on that day; empty for now. `unchecked`: whether figures of the lab that nobody has checked
    * count. The block asked for last is the one that is shown, whichever answer comes last.
    */
-  async function load(estateId: string, blockId: string, { knownOn = '', unchecked = 'out' }: { knownOn?: string; unchecked?: 'in' | 'out' } = {}): Promise<void> {
+  async function load(estateId: string, blockId: string, { season = null, knownOn = '', unchecked = 'out' }: { season?: string | null; knownOn?: string; unchecked?: 'in' | 'out' } = {}): Promise<void> {
     view.value = null;
-    const query = { known: knownOn === '' ? null : knownOn, unchecked: unchecked === 'in' ? 'in' : null };
+    const query = { season, known: knownOn === '' ? null : knownOn, unchecked: unchecked === 'in' ? 'in' : null };
     await newest(() => http.get<RipeningView>(`/api/estates/${estateId}/blocks/${blockId}/ripening`, { query }), (answer) => (view.value = answer));
   }
 

@@ -1,9 +1,12 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { EntryRestriction } from '../../server/models/EntryRestriction.ts';
+import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { noticeTexts } from '../../server/mail/noticeTexts.ts';
 import { PickNotice } from '../../server/models/PickNotice.ts';
+import { pickStops } from '../../server/services/lots/pickStops.ts';
+import type { RestrictionView } from '../../shared/contracts/restrictions.ts';
 import type { FactorView } from '../../shared/contracts/factors.ts';
 import type { LotsBoard } from '../../shared/contracts/lots.ts';
 import type { NoticeState, NoticeView } from '../../shared/contracts/notices.ts';
@@ -104,6 +107,64 @@ describe('the lots as known on an earlier day', () => {
   });
 });
 
+describe('the way to potential alcohol', () => {
+  it('is the estate’s, shown with every figure, kept with who changed it, and as it was on an earlier day', async () => {
+    const lotId = await newLot('Strength');
+    await setParts(lotId, [{ zoneId: block.zoneIds[0] }]);
+    const { brix, alcohol } = (await lotOf(lotId)).summary;
+    expect(alcohol!.method).toBe('brixFactor');
+    expect(alcohol!.low).toBeCloseTo(0.55 * (brix!.value - brix!.halfWidth!), 9);
+    const choose = (agent: Agent, method: string) => agent.write('put', `${base()}/alcohol-method`).send({ method });
+    expect((await choose(await app.as(crew.email), 'solidsLessAllowance')).status).toBe(403);
+    expect((await choose(winemaker, 'guess')).status).toBe(422);
+    expect((await choose(winemaker, 'solidsLessAllowance')).status).toBe(204);
+    // For everybody, and not by the door of the estate's other settings.
+    const owner = await app.as(estate.ownerEmail);
+    await owner.write('patch', base()).send({ settings: { alcoholMethod: 'brixFactor', dayHours: 7 } });
+    const after = (await owner.get(`${base()}/lots`)).body as LotsBoard;
+    expect(after.alcoholMethod).toBe('solidsLessAllowance');
+    expect(after.lots.find(({ id }) => id === lotId)!.summary.alcohol!.method).toBe('solidsLessAllowance');
+    expect((await board(dayAgo(2))).alcoholMethod).toBe('brixFactor');
+    const [entry] = await AuditEntry.query().where({ estateId: estate.estateId, action: 'lots.alcoholMethod' });
+    expect(entry).toMatchObject({ before: { method: 'brixFactor' }, after: { method: 'solidsLessAllowance' } });
+    await choose(winemaker, 'brixFactor');
+    await on(lotId, 'delete');
+  });
+});
+
+describe('the vine census on an earlier day', () => {
+  const mark = (state: string, count: number) => {
+    const rowId = rowsIn(1)[0]!;
+    const row = block.ground.rowIndexOf.get(rowId)!;
+    const ordinals = [...block.zoneOf.keys()].filter((vine) => block.zoneOf[vine] === 1 && block.ground.vines.row[vine] === row).slice(0, count).map((vine) => block.ground.vines.ordinal[vine]!);
+    return ordinals.map((ordinal) => ({ rowId, ordinal, state }));
+  };
+  const census = async (marks: object[], complete = false) => expect((await (await app.as(estate.ownerEmail)).write('put', `${base()}/blocks/${block.blockId}/vines`).send({ marks, complete })).status).toBeLessThan(300);
+  const bearing = async (known?: string) => (await board(known)).zones.find(({ number }) => number === 1)!.bearing;
+  const putBack = (days: number) => app.knex.raw(`update vine_history set at = at - interval '${days} days'; update blocks set census_at = census_at - interval '${days} days'`);
+
+  it('is that of the day, vine by vine, with the tonnes that rest on it', async () => {
+    const all = await bearing();
+    await census(mark('missing', 12));
+    await putBack(2);
+    await census(mark('living', 5));
+    expect(await bearing()).toBe(all - 7);
+    expect(await bearing(dayAgo(1))).toBe(all - 12);
+    const tonnes = async (known?: string) => (await board(known)).zones.find(({ number }) => number === 1)!.tonnes.value;
+    expect((await tonnes(dayAgo(1))) / (await tonnes())).toBeCloseTo((all - 12) / (all - 7), 9);
+    expect((await board(dayAgo(1))).censusFrom).toBeNull();
+    await census(mark('living', 12));
+    expect(await bearing()).toBe(all);
+  });
+
+  it('says from which day on it is known, where marks are older than its history', async () => {
+    await app.knex('blocks').where({ id: block.blockId }).update({ census_kept_since: new Date() });
+    expect((await board(dayAgo(1))).censusFrom).toBe(dayAgo(0));
+    expect((await board()).censusFrom).toBeNull();
+    await app.knex('blocks').where({ id: block.blockId }).update({ census_kept_since: null });
+  });
+});
+
 describe('a stop on a pick date', () => {
   const stopped = (lotId: string, pickOn: string) => on(lotId, 'patch', { body: { pickOn } });
 
@@ -113,21 +174,44 @@ describe('a stop on a pick date', () => {
     const answer = await stopped(lotId, '2026-09-28');
     expect(answer.status).toBe(409);
     const owner = (await app.knex('people').where({ id: estate.ownerId }).first()) as { name: string };
-    expect(answer.body.detail).toBe(`West Plot: Copper (interval as typed: 21 days) rules out picking before 2026-10-02. Entered by Picker. Choose a later day; only ${owner.name} may lift the entry, with a reason, where label and local law allow it.`);
+    expect(answer.body.detail).toBe(`West Plot: Copper (interval as typed: 21 days) rules out picking before 2026-10-02. Entered by Picker. Choose a later day; only ${owner.name} may put that day right, where it was typed wrong, nothing was applied, or the label allows an earlier one.`);
     // The day it had stands, and the board shows what stands against it.
     const { lots, mayLift } = await board();
     expect(lots[0]!.stops).toMatchObject([{ kind: 'pick', product: 'Copper', labelInterval: '21 days', until: '2026-10-02', setBy: 'Picker' }]);
     expect(mayLift).toEqual([owner.name]);
   });
 
-  it('is lifted only by somebody who may, with a reason, even when entry is open again', async () => {
+  it('by a pre-harvest interval outlasts a lift of entry, and is put right only on stated grounds by somebody who may', async () => {
+    const lotId = (await board()).lots[0]!.id;
     const restriction = await EntryRestriction.query().findOne({ estateId: estate.estateId, product: 'Copper' }).throwIfNotFound();
     const ahead = new Date(Date.now() + 20 * 86_400_000).toISOString().slice(0, 10);
-    await restriction.$query().patch({ noPickBefore: ahead });
-    const lift = (agent: Agent) => agent.post(`${base()}/restrictions/${restriction.id}/lift`, { reason: 'Laboratory found no residue' });
-    expect((await lift(winemaker)).status).toBe(403);
-    expect((await lift(await app.as(estate.ownerEmail))).status).toBe(204);
+    await restriction.$query().patch({ noPickBefore: ahead, endsAt: new Date(Date.now() + 3_600_000) });
+    const owner = await app.as(estate.ownerEmail);
+    expect((await owner.post(`${base()}/restrictions/${restriction.id}/lift`, { reason: 'Entry needed for the drip line' })).status).toBe(204);
+    expect((await board()).lots[0]!.stops).toMatchObject([{ kind: 'pick', until: ahead }]);
+    expect((await stopped(lotId, '2026-09-28')).status).toBe(409);
+    const change = (agent: Agent, facts: object) => agent.post(`${base()}/restrictions/${restriction.id}/pick-interval`, { noPickBefore: '2026-09-20', basis: 'mistyped', reason: 'The spray record says 20 September', ...facts });
+    expect((await change(winemaker, {})).status).toBe(403);
+    expect((await change(owner, { reason: 'wanted' })).status).toBe(422);
+    expect((await change(owner, { basis: 'notApplied' })).body.detail).toMatch(/leave the day empty/);
+    expect((await change(owner, { basis: 'labelAllows', noPickBefore: null })).status).toBe(422);
+    expect((await change(owner, { basis: 'labelAllows', noPickBefore: '2099-01-01' })).body.detail).toMatch(/earlier day only/);
+    expect((await change(owner, {})).status).toBe(204);
+    expect((await change(owner, {})).status).toBe(409);
     expect((await board()).lots[0]!.stops).toEqual([]);
+    const { items } = (await owner.get(`${base()}/restrictions`)).body as { items: RestrictionView[] };
+    const view = items.find(({ id }) => id === restriction.id)!;
+    expect(view).toMatchObject({ noPickBefore: '2026-09-20', lifted: { reason: 'Entry needed for the drip line' }, pickChanges: [{ basis: 'mistyped', before: ahead, after: '2026-09-20', reason: 'The spray record says 20 September' }] });
+    const audit = await AuditEntry.query().where({ estateId: estate.estateId }).whereIn('action', ['restrictions.lift', 'restrictions.pickInterval']).orderBy('id');
+    expect(audit.map(({ action, before, after, reason }) => ({ action, before, after, reason }))).toMatchObject([
+      { action: 'restrictions.lift', after: { noPickBefore: ahead } },
+      { action: 'restrictions.pickInterval', before: { noPickBefore: ahead }, after: { noPickBefore: '2026-09-20', basis: 'mistyped' } },
+    ]);
+    // On an earlier day the earlier day still stood.
+    await app.knex.raw("update pick_interval_changes set changed_at = now() + interval '1 minute'");
+    await restriction.$query().patch({ createdAt: new Date(Date.now() - 86_400_000) });
+    expect((await pickStops(estate.estateId, [{ lotId, pickOn: '2026-09-28' }], { at: new Date() })).get(lotId)).toMatchObject([{ kind: 'pick', until: ahead }]);
+    expect((await pickStops(estate.estateId, [{ lotId, pickOn: '2026-09-28' }])).get(lotId)).toEqual([]);
   });
 
   it('of some rows holds only lots with vines in them, on days that it touches in the estate’s own time', async () => {

@@ -1,7 +1,9 @@
+import { scaled } from '../../../shared/cellar/dependent.ts';
 import type { LotView, LotZone, LotsBoard, TankView } from '../../../shared/contracts/lots.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
-import { isBearing } from '../../ground/blockVines.ts';
+import { censusKnownFrom, isBearing } from '../../ground/blockVines.ts';
+import { endOfEstateDay } from '../../ground/estateDay.ts';
 import { peopleWhoMay } from '../../ground/peopleWhoMay.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
@@ -19,7 +21,7 @@ import { boardConfidence, figureOf } from './zoneOutlook.ts';
 export async function lotsBoard(access: Access, options: { scenarioId: string | null; today: string; knownOn?: string | null }): Promise<LotsBoard> {
   const scenario = await findScenario(access, options);
   const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
-  const then = options.knownOn ? await thenOf(access.estateId, scenario.id, new Date(`${options.knownOn}T23:59:59.999Z`)) : null;
+  const then = options.knownOn ? await thenOf(access.estateId, scenario.id, await endOfEstateDay(access.estateId, options.knownOn)) : null;
   const tanks = then?.stood.tanks ?? (await listTanks(access));
   const ground = await loadBoardGround(access.estateId, scenario, await usedFactors(access.estateId, then), then);
   const lots = await withStops(access.estateId, ground.lots.map((_, index) => lotView(ground, index, tanks)), then?.until ?? null);
@@ -29,11 +31,13 @@ export async function lotsBoard(access: Access, options: { scenarioId: string | 
     scenarios: scenarios.map(({ id, name, isLive }) => ({ id, name, isLive })),
     seasonId: scenario.seasonId,
     confidence: boardConfidence,
+    alcoholMethod: ground.alcoholMethod,
     zones: ground.blocks.flatMap((block) => block.zones.map((_, index) => zoneLine(ground, block, index))),
     lots,
     tanks,
     mayLift: (await peopleWhoMay(undefined, access.estateId, 'restrictions.lift')).map(({ name }) => name),
     knownOn: options.knownOn ?? null,
+    censusFrom: await censusKnownFrom(access.estateId, ground.blocks.map((one) => one.ground.block), then?.until ?? null),
   };
 }
 
@@ -138,9 +142,9 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): Omit<Lo
       bearing,
       share,
       areaHa: (share * zone.areaM2) / 10_000,
-      tonnes: figureOf({ ...outlook.tonnes, value: outlook.tonnes.value * share, standardError: outlook.tonnes.standardError * share }, { n: null, kind: 'estimated' }),
+      tonnes: figureOf(scaled(outlook.tonnes, share), { n: null, kind: 'estimated' }),
     })),
-    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null, factors: ground.factors }),
+    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null, factors: ground.factors, alcoholMethod: ground.alcoholMethod }),
   };
 }
 

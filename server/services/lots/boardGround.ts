@@ -1,6 +1,7 @@
 import type { TransactionOrKnex } from 'objection';
+import type { BrixMethod } from '../../../shared/contracts/lots.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
-import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { loadBlockVines, loadBlockVinesAt, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
@@ -9,6 +10,7 @@ import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { alcoholMethodOf } from './alcoholMethod.ts';
 import type { LotsThen } from './lotsThen.ts';
 import { zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
@@ -29,6 +31,7 @@ export interface BoardGround {
   lots: Lot[];
   blocks: BoardBlock[];
   factors: UsedFactors;
+  alcoholMethod: BrixMethod;
   measures: MeasureRecord[];
 }
 
@@ -48,7 +51,7 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
   const runs = then?.stood.runs ?? (await runsOf(estateId, scenario.id));
   const blocks = await Promise.all(
     zonings.map(async (zoning): Promise<BoardBlock> => {
-      const ground = await loadBlockVines(estateId, zoning.blockId);
+      const ground = then ? await loadBlockVinesAt(estateId, zoning.blockId, then.until) : await loadBlockVines(estateId, zoning.blockId);
       const zoneOf = zonesOfVines(ground, zoning);
       const own = zones.filter((zone) => zone.zoningId === zoning.id);
       const readings = await zonedReadings(estateId, { ground, zoneOf, seasonId: season.id, ...(then ? { until: then.until } : {}) });
@@ -57,7 +60,7 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
     }),
   );
   blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name));
-  return { season, lots, blocks, factors, measures };
+  return { season, lots, blocks, factors, measures, alcoholMethod: await alcoholMethodOf(estateId, then?.until ?? null) };
 }
 
 /** Zones in force, one set a block: now, or at a moment. */

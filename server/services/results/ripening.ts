@@ -11,11 +11,12 @@ import { fitTrend, type Trend } from '../../../shared/ripening/trend.ts';
 import { changeBetween, changeOfSameVines, type Change } from '../../../shared/sampling/change.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
 import type { Access } from '../../access/access.ts';
-import { Missing } from '../../errors.ts';
+import { censusKnownFrom } from '../../ground/blockVines.ts';
+import { endOfEstateDay } from '../../ground/estateDay.ts';
 import { isFirm, type ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
-import { Zoning } from '../../models/Zoning.ts';
+import { isSeasonOver, seasonOfBlock, seasonsOfBlock } from './seasonOfBlock.ts';
 import { loadZoneReadings, viewResults } from './zoneResults.ts';
 
 /** How far ahead a forecast is drawn. */
@@ -26,43 +27,50 @@ const fewSteps = 5;
 const sameShare = 0.8;
 const leastPairs = 3;
 
+interface RipeningOptions {
+  today: string;
+  knownOn?: string | null;
+  unchecked?: 'out' | 'in';
+  /** Null for the season of the zones in force. */
+  seasonId?: string | null;
+}
+
 /**
  * How each zone of a block ripens by the zones in force: series, change in words, trend and a forecast that carries its
- * record. With `knownOn` as it stood at the end of that day: its zones, and what had been received by then. Figures of the
- * lab that nobody has checked stay out unless they are asked for; how many there are is told.
+ * record. With `knownOn` as it stood at the end of that day: its zones, and what had been received by then. An earlier
+ * season is read by the zones it had, or by those of now when it had none; nothing is forecast for one that is over.
+ * Figures of the lab that nobody has checked stay out unless they are asked for; how many there are is told.
  */
-export async function blockRipening(access: Access, blockId: string, options: { today: string; knownOn?: string | null; unchecked?: 'out' | 'in' }): Promise<RipeningView> {
-  const until = options.knownOn ? new Date(`${options.knownOn}T23:59:59.999Z`) : null;
-  const zoning = await zoningThen(access.estateId, blockId, until);
-  const all = await loadZoneReadings(access, zoning.id, until ? { until } : {});
+export async function blockRipening(access: Access, blockId: string, options: RipeningOptions): Promise<RipeningView> {
+  const until = options.knownOn ? await endOfEstateDay(access.estateId, options.knownOn) : null;
+  const { season, zoning, zonesFrom } = await seasonOfBlock(access.estateId, blockId, { seasonId: options.seasonId ?? null, until });
+  const all = await loadZoneReadings(access, zoning.id, { seasonId: season.id, ...(until ? { until } : {}) });
   const basis = options.unchecked ?? 'out';
   const loaded = basis === 'in' ? all : { ...all, readings: all.readings.filter(({ state }) => state !== 'provisional') };
   const results = viewResults(loaded);
   const weather = await weatherUntil(access.estateId, until);
+  const shownOn = options.knownOn ?? options.today;
+  const isOver = await isSeasonOver(access.estateId, season, shownOn);
   const made = loaded.measures.flatMap((measure) =>
-    results.zones.map((zone) => seriesOf(measure, { zone: zone.number, values: results.values, readings: loaded.readings })).filter((made) => made !== null),
+    results.zones.map((zone) => seriesOf(measure, { zone: zone.number, values: results.values, readings: loaded.readings, isOver })).filter((made) => made !== null),
   );
   return {
     ...results,
+    season: { id: season.id, name: season.name, startsOn: season.startsOn, endsOn: season.endsOn, isOver, zonesFrom },
+    seasons: await seasonsOfBlock(access.estateId, blockId),
     series: made.map(({ series }) => series),
     record: recordsOf(made),
     knownOn: options.knownOn ?? null,
+    censusFrom: await censusKnownFrom(access.estateId, [loaded.ground.block], until),
     unchecked: { basis, n: all.readings.filter((reading) => reading.zone > 0 && reading.excludedReason === null && !isFirm(reading)).length },
     conditions: results.visits.map(({ on }) => conditionsOf(on, loaded.readings, weather)),
-    heat: heatSince(weather, { south: loaded.ground.block.epsg >= firstSouthernZone, until: options.knownOn ?? options.today }),
+    heat: heatSince(weather, { south: loaded.ground.block.epsg >= firstSouthernZone, until: isOver && season.endsOn < shownOn ? season.endsOn : shownOn }),
     loading: results.zones.flatMap((zone) => loadingOf(zone.number, results) ?? []),
   };
 }
 
 /** UTM zones of the southern half are numbered from 32701 on. */
 const firstSouthernZone = 32_700;
-
-async function zoningThen(estateId: string, blockId: string, until: Date | null): Promise<Zoning> {
-  const query = Zoning.query().where({ estateId, blockId }).orderBy('publishedAt', 'desc');
-  const zoning = await (until === null ? query.where({ state: 'live' }) : query.where('publishedAt', '<=', until)).first();
-  if (zoning) return zoning;
-  throw new Missing(until === null ? 'This block has no zones in force. Publish its zones first; ripeness is followed by zone.' : 'This block had no zones in force on that day. Choose a later day.');
-}
 
 async function weatherUntil(estateId: string, until: Date | null): Promise<WeatherDay[]> {
   const query = WeatherDayRecord.query().where({ estateId }).orderBy('day');
@@ -94,7 +102,7 @@ interface Made {
   steps: BackTestStep[];
 }
 
-function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneResult[]; readings: ZonedReading[] }): Made | null {
+function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneResult[]; readings: ZonedReading[]; isOver: boolean }): Made | null {
   const own = facts.values.filter((value) => value.zone === facts.zone && value.measure === measure.code).sort((a, b) => a.visit.localeCompare(b.visit));
   if (own.length === 0) return null;
   const readings = facts.readings.filter((reading) => reading.zone === facts.zone && reading.measureCode === measure.code && reading.excludedReason === null);
@@ -112,7 +120,7 @@ function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneRes
       change: changeSince(own, readings),
       trend: trend.kind === 'trend' ? { ...trend, rSquared: Number.isNaN(trend.rSquared) ? null : trend.rSquared } : trend,
       bend: bend.kind === 'bend' ? bend.word : null,
-      forecast: trend.kind === 'trend' ? band(trend) : [],
+      forecast: trend.kind === 'trend' && !facts.isOver ? band(trend) : [],
       otherWay: taken.length - points.length,
       sd: own.at(-1)!.sd,
     },

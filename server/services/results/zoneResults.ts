@@ -4,7 +4,7 @@ import type { BlockResult, MeasuredMean, ResultsView, TogetherResult, ZoneResult
 import { howManyMore, intervalOf, type Estimate } from '../../../shared/sampling/precision.ts';
 import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';
 import type { Access } from '../../access/access.ts';
-import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { isBearing, loadBlockVines, loadBlockVinesAt, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
@@ -38,7 +38,7 @@ export interface ZoneReadings {
 /** Everything the results of a zoning are computed from. */
 export async function loadZoneReadings(access: Access, zoningId: string, options: { seasonId?: string; until?: Date } = {}): Promise<ZoneReadings> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
-  const ground = await loadBlockVines(access.estateId, zoning.blockId);
+  const ground = options.until ? await loadBlockVinesAt(access.estateId, zoning.blockId, options.until) : await loadBlockVines(access.estateId, zoning.blockId);
   const zoneOf = zonesOfVines(ground, zoning);
   const zones = await Zone.query().where({ estateId: access.estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'areaM2');
   const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');

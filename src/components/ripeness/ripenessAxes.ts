@@ -15,7 +15,7 @@ const firstOrder = ['brix', 'ph', 'ta'];
 export function followedMeasures({ measures, series }: RipeningView): ShownMeasure[] {
   const place = (code: string) => (firstOrder.includes(code) ? firstOrder.indexOf(code) : firstOrder.length);
   return measures
-    .filter(({ code }) => firstOrder.includes(code) || series.some((one) => one.measure === code && one.points.length > 1))
+    .filter(({ code }) => series.some((one) => one.measure === code && (firstOrder.includes(code) || one.points.length > 1)))
     .sort((a, b) => place(a.code) - place(b.code) || a.code.localeCompare(b.code));
 }
 

@@ -8,7 +8,7 @@ import type { Estimate } from '../sampling/precision.ts';
  * often two tanks. Starting factors are common practice; the estate's own history replaces them.
  */
 export interface LitreHint {
-  readonly id: 'redMust' | 'whiteJuice' | 'finishedWine';
+  readonly id: 'redMust' | 'whiteJuice' | 'redWine' | 'whiteWine';
   readonly lowLPerT: number;
   readonly highLPerT: number;
   /** Share of the tank left empty for cap or foam. */
@@ -18,8 +18,16 @@ export interface LitreHint {
 export const litreHints = [
   { id: 'redMust', lowLPerT: 850, highLPerT: 950, headspace: { low: 0.2, high: 0.3 } },
   { id: 'whiteJuice', lowLPerT: 550, highLPerT: 700, headspace: { low: 0.1, high: 0.15 } },
-  { id: 'finishedWine', lowLPerT: 600, highLPerT: 750, headspace: null },
+  { id: 'redWine', lowLPerT: 600, highLPerT: 750, headspace: null },
+  // Juice less the 5 to 10 % that stays with the lees: wine can never be more than what was pressed.
+  { id: 'whiteWine', lowLPerT: 500, highLPerT: 660, headspace: null },
 ] as const satisfies readonly LitreHint[];
+
+/** Customary litres of a kind of wine, as must and as wine. */
+export function hintFor(wineType: string, of: 'must' | 'wine'): LitreHint {
+  const id = of === 'must' ? (wineType === 'red' ? 'redMust' : 'whiteJuice') : wineType === 'red' ? 'redWine' : 'whiteWine';
+  return litreHints.find((hint) => hint.id === id)!;
+}
 
 /** Litres with the errors of both factors. Example: 12.4 t (se 0.765) × 800 L/t → 9920 L (se 612). */
 export function litresFrom(tonnes: Estimate, litresPerTonne: Estimate): Estimate {

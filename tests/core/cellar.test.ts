@@ -6,7 +6,7 @@ import { reviewForecasts } from '../../shared/cellar/forecastReview.ts';
 import { lotLikeness } from '../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../shared/cellar/lots.ts';
 import { airGravityToBrix, baumeToGravity, brixToGravity, gravityToBaume, gravityToBrix, gravityToOechsle, juiceDensityGPerL, oechsleToGravity, solidsGPerL } from '../../shared/cellar/must.ts';
-import { fitTank, litreHints, litresFrom, tankVolumeNeeded } from '../../shared/cellar/tankFit.ts';
+import { fitTank, hintFor, litreHints, litresFrom, tankVolumeNeeded } from '../../shared/cellar/tankFit.ts';
 import { correctRefractometer } from '../../shared/cellar/temperature.ts';
 import { convertUnit, kgPerHlToLitresPerT } from '../../shared/cellar/unitFactors.ts';
 import { estimateYield, type YieldQuestion } from '../../shared/cellar/yield.ts';
@@ -191,7 +191,12 @@ describe('litres and tanks', () => {
   });
 
   it('start from hints that keep must and wine apart', () => {
-    expect(litreHints.map(({ id }) => id)).toEqual(['redMust', 'whiteJuice', 'finishedWine']);
+    expect(litreHints.map(({ id }) => id)).toEqual(['redMust', 'whiteJuice', 'redWine', 'whiteWine']);
+    // Wine is what is left of the must, at either end of the custom.
+    for (const wine of ['red', 'white', 'rose']) {
+      expect(hintFor(wine, 'wine').lowLPerT).toBeLessThan(hintFor(wine, 'must').lowLPerT);
+      expect(hintFor(wine, 'wine').highLPerT).toBeLessThan(hintFor(wine, 'must').highLPerT);
+    }
     expect(litreHints.every(({ lowLPerT, highLPerT }) => lowLPerT < highLPerT)).toBe(true);
   });
 });

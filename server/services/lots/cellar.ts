@@ -1,7 +1,7 @@
 import type { z } from 'zod';
 import type { CellarResultView, FactorKind, FactorView, factorSwitch, newCellarResult } from '../../../shared/contracts/factors.ts';
 import { LOTS_NEEDED } from '../../../shared/cellar/learnFactor.ts';
-import { litreHints } from '../../../shared/cellar/tankFit.ts';
+import { hintFor } from '../../../shared/cellar/tankFit.ts';
 import type { Access } from '../../access/access.ts';
 import { Unusable } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
@@ -51,7 +51,7 @@ function assumedOf(kind: FactorKind, about: string): number | null {
   if (kind === 'growth') return assumedGrowth;
   if (kind === 'losses') return assumedLosses.share;
   if (kind === 'tankOffset') return null;
-  const hint = litreHints.find(({ id }) => id === (kind === 'wineL' ? 'finishedWine' : about === 'red' ? 'redMust' : 'whiteJuice'))!;
+  const hint = hintFor(about, kind === 'wineL' ? 'wine' : 'must');
   return (hint.lowLPerT + hint.highLPerT) / 2;
 }
 

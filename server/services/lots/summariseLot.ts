@@ -3,7 +3,7 @@ import { scaled, timesShared, type Dependent } from '../../../shared/cellar/depe
 import { nextLot } from '../../../shared/cellar/learnFactor.ts';
 import { lotLikeness, type LikenessPart } from '../../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../../shared/cellar/lots.ts';
-import { fitTank, litreHints } from '../../../shared/cellar/tankFit.ts';
+import { fitTank, hintFor, type LitreHint } from '../../../shared/cellar/tankFit.ts';
 import type { BrixMethod, LotSummary, TankView, WineType } from '../../../shared/contracts/lots.ts';
 import { combineLinearly } from '../../../shared/sampling/combineEstimates.ts';
 import type { Estimate } from '../../../shared/sampling/precision.ts';
@@ -107,12 +107,17 @@ export function withoutZone(shares: LotShare[], at: number): { brix: number; bet
 /** Litres of must, and of wine, a tonne: learned where that is switched on, else the custom of the trade. */
 export function mustPerTonne(wineType: string, factors: UsedFactors): Estimate {
   const learned = factors.mustL.get(wineType);
-  return learned ? nextLot(learned) : hintOf(wineType === 'red' ? 'redMust' : 'whiteJuice');
+  return learned ? nextLot(learned) : middleOf(hintFor(wineType, 'must'));
 }
 
 function winePerTonne(wineType: string, factors: UsedFactors): Estimate {
   const learned = factors.wineL.get(wineType);
-  return learned ? nextLot(learned) : hintOf('finishedWine');
+  if (learned) return nextLot(learned);
+  const custom = middleOf(hintFor(wineType, 'wine'));
+  const must = factors.mustL.get(wineType);
+  // Where the estate's own must is known, wine keeps its customary share of it.
+  const scale = must ? must.mean / middleOf(hintFor(wineType, 'must')).value : 1;
+  return { ...custom, value: custom.value * scale, standardError: custom.standardError * scale };
 }
 
 /** °Brix as the tank would read it, by the offset learned for the variety; null while it is off or varieties are mixed. */
@@ -124,8 +129,7 @@ function inTank(brix: Estimate, shares: LotShare[], factors: UsedFactors): { bri
 }
 
 /** Middle of the customary range, with a standard error that puts its ends at two of them. */
-function hintOf(id: (typeof litreHints)[number]['id']): Estimate {
-  const hint = litreHints.find((candidate) => candidate.id === id)!;
+function middleOf(hint: LitreHint): Estimate {
   return { value: (hint.lowLPerT + hint.highLPerT) / 2, standardError: (hint.highLPerT - hint.lowLPerT) / 4, df: Infinity };
 }
 

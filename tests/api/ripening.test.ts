@@ -106,6 +106,17 @@ describe('suggested lots', () => {
     expect(answer.body.detail).toMatch(/No tank is free/);
   });
 
+  it('are refused where nothing fits, with the reason for every zone, and leave nothing behind', async () => {
+    const tiny = (await winemaker.post(`${base()}/tanks`, { name: 'Demijohn', litres: 50 })).body.id as string;
+    const answer = await winemaker.post(`${base()}/lot-suggestions`, { name: 'Too small', firstDay: '2026-09-20' });
+    expect(answer.status).toBe(422);
+    expect(answer.body).toMatchObject({ code: 'nothingFits' });
+    expect(answer.body.detail).toMatch(/Choose larger tanks/);
+    expect((answer.body.leftOut as { reason: { code: string } }[]).map(({ reason }) => reason.code)).toEqual(['tooBig', 'tooBig', 'tooBig', 'tooBig']);
+    expect((await board()).scenarios).toHaveLength(1);
+    await winemaker.delete(`${base()}/tanks/${tiny}`);
+  });
+
   it('put the early zones of two blocks together and the late ones, in a what-if of their own', async () => {
     const zone = (await board()).zones[0]!;
     // Two tanks, each for two zones of about the same tonnes at 900 L a tonne.

@@ -48,6 +48,9 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const room = await roomFrom(access, asked);
   const rules = rulesOf(asked, { factors, room });
   const answer = await runCompute<SuggestAnswer>('suggestLots', { zones: zones.map(plain), tanks: tanks.map(({ name: _name, ...tank }) => tank), rules, limitSeconds } satisfies SuggestInput, { lane: 'quick' });
+  const leftOut = (placed: ReadonlySet<number>) => zones.flatMap((zone, index) => (placed.has(index) ? [] : [{ zoneId: zone.id, zone: zone.name, reason: whyLeftOut(zone, tanks, rules) }]));
+  if (answer.groupings === 0) throw new Unusable('nothingFits', 'No lot can be made within these limits, so nothing was stored. Choose larger tanks or a smaller chance of fit, give a day more room, widen the targets, or split large zones by rows.', { leftOut: leftOut(new Set()) });
+  if (answer.lots.length === 0) throw new Unusable('notFoundInTime', `No proposal was found in ${limitSeconds} seconds, so nothing was stored. Ask again with fewer tanks, fewer varieties that may meet, or narrower targets.`);
   const lots = answer.lots.map((lot) => ({ lot, own: lot.zones.map((index) => zones[index]!) }));
   const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: isPressed(own[0]!), earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));
@@ -55,7 +58,7 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const suggestion: SuggestionView = {
     asked, madeOn: options.today, provedBest: answer.provedBest, groupings: answer.groupings,
     lots: lots.map(({ lot }, at) => ({ lotName: names[at]!, tank: tanks[lot.tank]!.name, chanceOfFit: lot.chanceOfFit, pickOn: days[at] ?? null, zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyPlaced(zone, lot, { zones, lots: answer.lots, rules }) })) })),
-    leftOut: zones.flatMap((zone, index) => (placed.has(index) ? [] : [{ zoneId: zone.id, zone: zone.name, reason: whyLeftOut(zone, tanks, rules) }])),
+    leftOut: leftOut(placed),
   };
   return store(access, { live, kept, suggestion, made: lots.map(({ lot, own }, at) => ({ lot, own, name: names[at]!, pickOn: days[at] ?? null, tankId: tanks[lot.tank]!.id })) });
 }

@@ -45,6 +45,7 @@ export async function liftRestriction(access: Access, restrictionId: string, opt
     if (row.liftedAt) throw new Clash('lifted', 'This restriction was lifted already.');
     if (row.endsAt <= options.now) throw new Clash('over', 'This entry restriction has ended by itself.');
     await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
+    await tellLifted(access, row, options.reason, trx);
     await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString(), noPickBefore: row.noPickBefore }, reason: options.reason });
   });
 }
@@ -70,20 +71,41 @@ export async function changePickInterval(access: Access, restrictionId: string, 
 }
 
 async function tellEverybody(access: Access, blockName: string, input: NewRestriction, trx: Parameters<typeof queueMail>[0]): Promise<void> {
-  const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const { estate, deedBy, readers } = await readersOf(access, trx);
   const lifters = (await peopleWhoMay(trx, access.estateId, 'restrictions.lift')).map(({ name }) => name);
-  const setter = await Person.query(trx).findById(access.personId).throwIfNotFound();
-  const readers = await Person.query(trx)
-    .whereNotNull('email')
-    .whereIn('id', Membership.query(trx).where({ estateId: access.estateId }).whereNull('endedAt').whereNot({ role: 'guest' }).select('personId'));
   for (const reader of readers) {
     await queueMail(trx, {
       estateId: access.estateId,
       kind: 'restriction',
       to: { address: reader.email!, name: reader.name, language: reader.language },
-      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: setter.name, lifters: new Intl.ListFormat(reader.language, { type: 'disjunction' }).format(lifters) },
+      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: deedBy.name, lifters: new Intl.ListFormat(reader.language, { type: 'disjunction' }).format(lifters) },
     });
   }
+}
+
+/** Whoever was told to stay out is told that entry was lifted, and that the pre-harvest interval was not. */
+async function tellLifted(access: Access, { blockId, product, noPickBefore }: EntryRestriction, reason: string, trx: Parameters<typeof queueMail>[0]): Promise<void> {
+  const { estate, deedBy, readers } = await readersOf(access, trx);
+  const { name: block } = await Block.query(trx).findOne({ estateId: access.estateId, id: blockId }).select('name').throwIfNotFound();
+  for (const reader of readers) {
+    const day = noPickBefore === null ? '' : new Intl.DateTimeFormat(reader.language, { timeZone: 'UTC', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(noPickBefore));
+    await queueMail(trx, {
+      estateId: access.estateId,
+      kind: noPickBefore === null ? 'restrictionLifted' : 'restrictionLiftedNoPick',
+      to: { address: reader.email!, name: reader.name, language: reader.language },
+      facts: { estate: estate.name, block, product, who: deedBy.name, reason, day },
+    });
+  }
+}
+
+/** Everybody with access and a mail address, guests apart: safety notices cannot be muted. */
+async function readersOf(access: Access, trx: Parameters<typeof queueMail>[0]): Promise<{ estate: Estate; deedBy: Person; readers: Person[] }> {
+  const estate = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
+  const deedBy = await Person.query(trx).findById(access.personId).throwIfNotFound();
+  const readers = await Person.query(trx)
+    .whereNotNull('email')
+    .whereIn('id', Membership.query(trx).where({ estateId: access.estateId }).whereNull('endedAt').whereNot({ role: 'guest' }).select('personId'));
+  return { estate, deedBy, readers };
 }
 
 function localTime(iso: string, timeZone: string, language: string): string {

@@ -4,6 +4,7 @@ import { EntryRestriction } from '../../server/models/EntryRestriction.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { noticeTexts } from '../../server/mail/noticeTexts.ts';
+import { MailMessage } from '../../server/models/MailMessage.ts';
 import { PickNotice } from '../../server/models/PickNotice.ts';
 import { pickStops } from '../../server/services/lots/pickStops.ts';
 import type { RestrictionView } from '../../shared/contracts/restrictions.ts';
@@ -189,6 +190,8 @@ describe('a stop on a pick date', () => {
     const owner = await app.as(estate.ownerEmail);
     expect((await owner.post(`${base()}/restrictions/${restriction.id}/lift`, { reason: 'Entry needed for the drip line' })).status).toBe(204);
     expect((await board()).lots[0]!.stops).toMatchObject([{ kind: 'pick', until: ahead }]);
+    expect((await MailMessage.query().where({ kind: 'restrictionLiftedNoPick' })).every(({ bodyText }) => bodyText.includes('The pre-harvest interval stays: no picking before'))).toBe(true);
+    expect(await MailMessage.query().where({ kind: 'restrictionLiftedNoPick' }).resultSize()).toBeGreaterThan(0);
     expect((await stopped(lotId, '2026-09-28')).status).toBe(409);
     const change = (agent: Agent, facts: object) => agent.post(`${base()}/restrictions/${restriction.id}/pick-interval`, { noPickBefore: '2026-09-20', basis: 'mistyped', reason: 'The spray record says 20 September', ...facts });
     expect((await change(winemaker, {})).status).toBe(403);

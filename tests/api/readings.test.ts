@@ -140,6 +140,10 @@ describe('entry restrictions', () => {
     expect((await agronomist.post(`${base()}/restrictions/${made.body.id}/lift`, { reason: 'Entered by mistake' })).status).toBe(403);
     expect((await manager.post(`${base()}/restrictions/${made.body.id}/lift`, { reason: 'Entered by mistake' })).status).toBe(204);
     expect((await EntryRestriction.query().findById(made.body.id))!.liftedReason).toBe('Entered by mistake');
+    // Whoever was told to stay out is told of the lift.
+    const lifted = await MailMessage.query().where({ kind: 'restrictionLifted' });
+    expect(lifted.map(({ toAddress }) => toAddress).sort()).toEqual(mails.map(({ toAddress }) => toAddress).sort());
+    expect(lifted[0]!.bodyText).toMatch(/Entered by mistake[^]*Look at signs and label before you go in/);
   });
 
   it('refuses an end before its start and a row of another block', async () => {

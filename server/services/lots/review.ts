@@ -1,8 +1,10 @@
 import { reviewForecasts, type ForecastRecord } from '../../../shared/cellar/forecastReview.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { NoticeBody } from '../../../shared/contracts/notices.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
 import type { Access } from '../../access/access.ts';
+import { Estate } from '../../models/Estate.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { findScenario, lotViews } from './board.ts';
@@ -23,6 +25,7 @@ export async function seasonReview(access: Access, options: { today: string }): 
   const scenario = await findScenario(access, { scenarioId: null, today: options.today });
   const ground = await loadBoardGround(estateId, scenario, await usedFactors(estateId));
   const lots = await lotViews(access, ground);
+  const { timeZone } = await Estate.query().findById(estateId).select('timeZone').throwIfNotFound();
   const [tickets, notices] = await Promise.all([
     ScaleTicket.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)),
     PickNotice.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)).orderBy('number'),
@@ -34,9 +37,9 @@ export async function seasonReview(access: Access, options: { today: string }): 
     const first = notices.find((notice) => notice.lotId === lot.id);
     const forecast = first ? (first.body as NoticeBody).tonnes : lot.summary.tonnes;
     const held = actualT === null || forecast === null || forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth;
-    return { lotId: lot.id, lotName: lot.name, forecast, forecastOn: first?.sentAt.toISOString().slice(0, 10) ?? null, actualT, tickets: own.length, held };
+    return { lotId: lot.id, lotName: lot.name, forecast, forecastOn: first ? dayIn(timeZone, first.sentAt) : null, actualT, tickets: own.length, held };
   });
-  const { zones, parts, partsOf } = reviewZones(ground, counting);
+  const { zones, parts, partsOf } = reviewZones(ground, counting, (at) => dayIn(timeZone, at));
   const lastOf = [...groupBy(zones, ({ blockId, zone }) => `${blockId}|${zone}`).values()].map((group) => group.at(-1)!);
   return {
     seasonId: ground.season.id,

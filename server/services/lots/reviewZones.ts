@@ -17,10 +17,14 @@ interface Weighed {
   share: number;
 }
 
-/** Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. */
-export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
+/**
+ * Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. What reached
+ * the books after the block's first load was weighed is no forecast. `dayOf`: the estate's day of an instant.
+ */
+export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[], dayOf: (at: Date) => string): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
   const all = ground.blocks.flatMap((block) => {
-    const dates = forecastDates(block);
+    const first = firstWeighed(ground, tickets, block);
+    const dates = forecastDates(block, first && dayOf(first));
     return block.zones.flatMap((zone, at) => {
       const weighed = weighedOf(ground, tickets, { block, at });
       if (weighed === null) return [];
@@ -36,9 +40,15 @@ export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]
   return { zones, parts: summed(shares.flatMap(({ own }) => own)), partsOf: (blockId) => summed(shares.filter((one) => one.blockId === blockId).flatMap(({ own }) => own)) };
 }
 
-/** Days on which clusters were counted or weighed and received before the first ticket: each gave a forecast of its own. */
-function forecastDates({ readings }: BoardBlock): string[] {
-  const days = new Set(readings.filter(({ measureCode, excludedReason }) => yieldMeasures.includes(measureCode) && excludedReason === null).map(({ receivedOn }) => receivedOn));
+/** When the first load with fruit of the block was weighed; null while none was. */
+function firstWeighed({ lots }: BoardGround, tickets: readonly ScaleTicket[], block: BoardBlock): Date | null {
+  const own = lots.filter((_, index) => block.zones.some((__, at) => shareIn(block, at, index) > 0)).map(({ id }) => id);
+  return tickets.filter(({ lotId }) => own.includes(lotId)).map(({ weighedAt }) => weighedAt).sort((a, b) => a.getTime() - b.getTime())[0] ?? null;
+}
+
+/** Days on which clusters were counted or weighed and received, up to the day of the first load: each gave a forecast of its own. */
+function forecastDates({ readings }: BoardBlock, until: string | null): string[] {
+  const days = new Set(readings.filter(({ measureCode, excludedReason, receivedOn }) => yieldMeasures.includes(measureCode) && excludedReason === null && (until === null || receivedOn <= until)).map(({ receivedOn }) => receivedOn));
   return [...days].sort().slice(-shownDates);
 }
 

@@ -34,7 +34,7 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     step('estate');
     const made = await seedEstate(days, place);
     step('blocks');
-    const laid = await seedBlocks(made, place, options.now);
+    const laid = await seedBlocks(made, place, { now: options.now, countedAt: days.at(-200, 9) });
     step('layers');
     await seedLayers(made, ground, days);
     step('fruit');

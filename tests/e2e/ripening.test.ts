@@ -103,8 +103,48 @@ describe('from results to the season’s review', () => {
     const rose = (await board(page, estateId)).lots.find(({ stops }) => stops.length > 0);
     expect(rose?.stops[0]).toMatchObject({ kind: 'pick', setBy: 'Tessa Brand' });
     await stop.first().waitFor();
-    await page.getByText(/Only Hester Vane or Tessa Brand may lift the entry/).first().waitFor();
+    await page.getByText(/A pre-harvest interval is not lifted by wish; Hester Vane or Tessa Brand may put the day right/).first().waitFor();
     await expectAccessible(page);
+    await context.close();
+  });
+
+  it('lets the manager lift entry alone, and put a pre-harvest day right on a stated ground', async () => {
+    const { page, context, estateId } = await app.signIn('manager');
+    await page.goto(`${app.url}/e/${estateId}/restrictions`);
+    const line = page.getByRole('row', { name: /Stile Piece/ });
+    await line.click();
+    await page.getByRole('button', { name: 'Lift entry early' }).click();
+    const dialog = page.getByRole('dialog');
+    await dialog.getByText(/The pre-harvest interval stays: no picking before/).waitFor();
+    await dialog.getByLabel('Reason').fill('A burst pipe in row 4');
+    await dialog.getByRole('button', { name: 'Lift entry early' }).click();
+    await line.getByText('no picking yet').waitFor();
+    await page.getByText(/Entry lifted .* by Tessa Brand: A burst pipe in row 4/).waitFor();
+    await page.getByRole('button', { name: 'Put pre-harvest day right' }).click();
+    await dialog.getByText('nobody lifts it by wish', { exact: false }).waitFor();
+    await dialog.getByLabel('Nothing was applied here').check();
+    await dialog.getByLabel('What the label or the spray record says').fill('The sprayer never reached this block');
+    await expectAccessible(page);
+    await dialog.getByRole('button', { name: 'Change the day' }).click();
+    await page.getByText(/Nothing was applied here: The sprayer never reached this block/).waitFor();
+    await line.getByText('lifted', { exact: true }).waitFor();
+    await context.close();
+  });
+
+  it('shows an earlier season by its zones, without a forecast, and the way to potential alcohol with its figures', async () => {
+    const { page, context, estateId } = await app.signIn('winemaker');
+    await page.goto(`${app.url}/e/${estateId}/ripeness`);
+    const season = page.getByLabel('Season', { exact: true });
+    await page.getByRole('heading', { name: 'How many more' }).waitFor();
+    const earlier = (await season.locator('option').allInnerTexts()).find((text, at) => at > 0 && !/no readings/.test(text))!;
+    await season.selectOption({ label: earlier });
+    await page.getByText(`Season ${earlier} is over.`).waitFor();
+    expect(await page.getByRole('heading', { name: 'How many more' }).count()).toBe(0);
+    await expectAccessible(page);
+    await page.goto(`${app.url}/e/${estateId}/lots`);
+    await page.getByLabel('Potential alcohol by').selectOption({ label: 'solids less 30 g/L, ÷ 16.83' });
+    await page.getByText('% vol, by solids less 30 g/L').waitFor();
+    expect((await board(page, estateId)).lots.flatMap(({ summary }) => summary.alcohol?.method ?? [])).toContain('solidsLessAllowance');
     await context.close();
   });
 

@@ -117,7 +117,7 @@ async function earliestDays(estateId: string, firstDay: string): Promise<Map<str
   const { timeZone } = await Estate.query().findById(estateId).throwIfNotFound();
   const rows = (await EntryRestriction.query()
     .where({ estateId })
-    .where((holds) => holds.where((closed) => closed.whereNull('liftedAt').where('endsAt', '>', firstDay)).orWhere('noPickBefore', '>', firstDay))
+    .where((holds) => holds.where((closed) => closed.whereNull('liftedAt').whereRaw('(ends_at at time zone ?) > ?::timestamp', [timeZone, firstDay])).orWhere('noPickBefore', '>', firstDay))
     .select('blockId', 'noPickBefore', EntryRestriction.raw("case when lifted_at is null then to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') end as \"openOn\"", [timeZone]))) as unknown as { blockId: string; noPickBefore: string | null; openOn: string | null }[];
   const first = new Map<string, string>();
   for (const { blockId, noPickBefore, openOn } of rows) {

@@ -1,5 +1,4 @@
 import { constants, inflateSync } from 'node:zlib';
-import { ZSTDDecoder } from 'zstddec';
 import { decodeLzw } from './lzw.ts';
 import { decodePackBits } from './packBits.ts';
 import { decodeXz } from './xz.ts';
@@ -49,7 +48,9 @@ export const compressions: ReadonlyMap<number, Compression> = new Map<number, Co
   [50002, { name: 'JPEG XL', prepare: null, reason: lossy }],
 ]);
 
+/** Its decoder is loaded for the pictures that need it. */
 async function prepareZstd(): Promise<Unpack> {
+  const { ZSTDDecoder } = await import('zstddec');
   const decoder = new ZSTDDecoder();
   await decoder.init();
   return (raw, size) => {

@@ -5,9 +5,12 @@ import { sniffFormat } from '../sniffFormat.ts';
 import { decodeText } from '../textEncoding.ts';
 import type { ImportQuestion } from '../understood.ts';
 import type { LayersRead } from './rawLayer.ts';
-import { readGeoPackage } from './readGeoPackage.ts';
-import { readShapefile, shapefileNames } from './readShapefile.ts';
 import { readText } from './readText.ts';
+
+/** Names of the layers in an archive: paths of .shp files without their ending. */
+export function shapefileNames(entries: readonly ZipEntry[]): string[] {
+  return entries.filter(({ name }) => /\.shp$/i.test(name) && !isPackerRubbish(name)).map(({ name }) => name.slice(0, -4));
+}
 
 /** Layers in an archive beside shapefiles. */
 export function isOtherLayer(name: string): boolean {
@@ -25,7 +28,8 @@ export async function readArchive(archive: ZipArchive, wanted: string | undefine
   throw nothingRead(archive);
 }
 
-function readShapefiles(archive: ZipArchive, names: readonly string[], wanted: string | undefined): LayersRead {
+async function readShapefiles(archive: ZipArchive, names: readonly string[], wanted: string | undefined): Promise<LayersRead> {
+  const { readShapefile } = await import('./readShapefile.ts');
   const labels = distinctLabels(names);
   const at = labels.indexOf(wanted ?? '');
   const chosen = at < 0 ? names.map((_, each) => each) : [at];
@@ -36,13 +40,14 @@ function readShapefiles(archive: ZipArchive, names: readonly string[], wanted: s
 }
 
 async function readDatabase(archive: ZipArchive, entry: ZipEntry, { wanted, isAlone }: { wanted: string | undefined; isAlone: boolean }): Promise<LayersRead> {
+  const { readGeoPackage } = await import('./readGeoPackage.ts');
   const reading = await readGeoPackage(archive.read(entry), wanted);
   const name = entry.name.split('/').pop()!.slice(0, 60);
   return isAlone ? reading : { ...reading, warnings: [...reading.warnings, { code: 'other-files', text: `Of the files in the archive, only "${name}" is read.`, params: { name } }] };
 }
 
 /** Files that hold no shapes, as the cover of a KMZ which only names its parts, do not count beside those that do. */
-function readTexts(archive: ZipArchive, entries: readonly ZipEntry[], wanted: string | undefined): LayersRead {
+async function readTexts(archive: ZipArchive, entries: readonly ZipEntry[], wanted: string | undefined): Promise<LayersRead> {
   const labels = distinctLabels(entries.map(({ name }) => name.replace(/\.[^.]*$/, '')));
   const at = labels.indexOf(wanted ?? '');
   const readings: LayersRead[] = [];
@@ -51,7 +56,7 @@ function readTexts(archive: ZipArchive, entries: readonly ZipEntry[], wanted: st
     if (at >= 0 && each !== at) continue;
     try {
       const bytes = archive.read(entry);
-      readings.push(readText(sniffFormat(bytes.subarray(0, 4096), entry.name), () => decodeText(bytes).text, labels[each]!));
+      readings.push(await readText(sniffFormat(bytes.subarray(0, 4096), entry.name), () => decodeText(bytes).text, labels[each]!));
     } catch (error) {
       if (!(error instanceof ImportProblem)) throw error;
       refusal ??= error;

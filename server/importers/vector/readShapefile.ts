@@ -1,7 +1,6 @@
 import type { Geometry, Position } from 'geojson';
 import { parseShp } from 'shpjs';
 import type { ZipArchive } from '../archive/zipArchive.ts';
-import { isPackerRubbish, type ZipEntry } from '../archive/zipDirectory.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { referenceFromText } from '../reference/referenceSystem.ts';
 import type { ImportWarning, ReferenceSystem } from '../understood.ts';
@@ -15,11 +14,6 @@ export interface ShapefileReading {
   reference: ReferenceSystem | null;
   whyNoReference: string;
   warnings: ImportWarning[];
-}
-
-/** Names of the layers in an archive: paths of .shp files without their ending. */
-export function shapefileNames(entries: readonly ZipEntry[]): string[] {
-  return entries.filter(({ name }) => /\.shp$/i.test(name) && !isPackerRubbish(name)).map(({ name }) => name.slice(0, -4));
 }
 
 /** One layer: shapes, attributes, reference system. Throws ImportProblem; what can be done without is a warning. */

@@ -3,15 +3,13 @@ import { referenceFromEpsg } from '../reference/referenceSystem.ts';
 import type { Sniffed } from '../sniffFormat.ts';
 import type { LayersRead } from './rawLayer.ts';
 import { readGeoJson } from './readGeoJson.ts';
-import { readGpx } from './readGpx.ts';
-import { readKml } from './readKml.ts';
 
 /** GeoJSON, KML or GPX by what the contents were told to be. Throws ImportProblem for anything else. */
-export function readText({ format, foreignName }: Sniffed, text: () => string, layerName: string): LayersRead {
+export async function readText({ format, foreignName }: Sniffed, text: () => string, layerName: string): Promise<LayersRead> {
   if (format === 'geojson') return readGeoJson(text(), layerName);
   const wgs84 = { reference: referenceFromEpsg(4326, 'format'), whyNoReference: '' };
-  if (format === 'kml') return { ...readKml(text(), layerName), ...wgs84 };
-  if (format === 'gpx') return { ...readGpx(text(), layerName), ...wgs84 };
+  if (format === 'kml') return { ...(await import('./readKml.ts')).readKml(text(), layerName), ...wgs84 };
+  if (format === 'gpx') return { ...(await import('./readGpx.ts')).readGpx(text(), layerName), ...wgs84 };
   if (format === 'shapefile-part') throw new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.' });
   if (format === 'empty') throw new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.' });
   const found = foreignName ?? (format === 'geotiff' ? 'a raster picture (TIFF)' : format === 'table' ? 'a table of points' : 'XML of another kind');

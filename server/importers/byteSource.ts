@@ -4,8 +4,8 @@ import { ImportProblem } from './importProblem.ts';
 /** Bytes that can be read at any place, without loading the whole file. */
 export interface ByteSource {
   readonly size: number;
-  /** Exactly `length` bytes in a buffer of their own. Throws `truncated` where the file ends before. */
-  read(offset: number, length: number): Uint8Array<ArrayBuffer>;
+  /** Exactly `length` bytes, in a buffer of their own or in the given one of that length. Throws `truncated` where the file ends before. */
+  read(offset: number, length: number, into?: Uint8Array<ArrayBuffer>): Uint8Array<ArrayBuffer>;
   close(): void;
 }
 
@@ -15,9 +15,9 @@ export function openFile(path: string): ByteSource {
   const size = fstatSync(descriptor).size;
   return {
     size,
-    read(offset, length) {
+    read(offset, length, into) {
       checkRange(offset, length, size);
-      const bytes = new Uint8Array(length);
+      const bytes = into ?? new Uint8Array(length);
       let done = 0;
       while (done < length) {
         const got = readSync(descriptor, bytes, done, length - done, offset + done);
@@ -34,9 +34,9 @@ export function openFile(path: string): ByteSource {
 export function fromBytes(bytes: Uint8Array): ByteSource {
   return {
     size: bytes.byteLength,
-    read(offset, length) {
+    read(offset, length, into) {
       checkRange(offset, length, bytes.byteLength);
-      const out = new Uint8Array(length);
+      const out = into ?? new Uint8Array(length);
       out.set(bytes.subarray(offset, offset + length));
       return out;
     },

@@ -18,14 +18,16 @@ export interface BlockReader {
 /** Prepares the decoder of the file's compression, once. */
 export async function openBlocks(source: ByteSource, layout: RasterLayout): Promise<BlockReader> {
   const prepare = compressions.get(layout.compression)!.prepare!;
-  const unpack = await prepare();
-  return { layout, read: (blockCol, blockRow, plane) => readBlock({ source, layout, unpack }, { blockCol, blockRow, plane }) };
+  const reader: Reader = { source, layout, unpack: await prepare(), packed: new Uint8Array(0) };
+  return { layout, read: (blockCol, blockRow, plane) => readBlock(reader, { blockCol, blockRow, plane }) };
 }
 
 interface Reader {
   source: ByteSource;
   layout: RasterLayout;
   unpack: Unpack;
+  /** Packed bytes of the block in hand; used again for the next, so that a large picture leaves less to collect. */
+  packed: Uint8Array<ArrayBuffer>;
 }
 
 interface Place {
@@ -41,8 +43,15 @@ function readBlock(reader: Reader, place: Place): SampleValues | null {
   if (byteCount === 0) return null;
   const offset = layout.offsets[index]!;
   if (offset + byteCount > source.size) throw cutOff(place, offset + byteCount, source.size);
-  const bytes = unpackBlock(reader, source.read(offset, byteCount), place);
+  const bytes = unpackBlock(reader, packedBytes(reader, offset, byteCount), place);
   return sampleValues(bytes, layout, layout.blockWidth * (layout.separate ? 1 : layout.samples));
+}
+
+/** Bytes that are not packed become the block's values, so they get a buffer of their own. */
+function packedBytes(reader: Reader, offset: number, byteCount: number): Uint8Array<ArrayBuffer> {
+  if (reader.layout.compression === 1) return reader.source.read(offset, byteCount);
+  if (reader.packed.length < byteCount) reader.packed = new Uint8Array(Math.ceil(byteCount * 1.25));
+  return reader.source.read(offset, byteCount, reader.packed.subarray(0, byteCount));
 }
 
 /** Unpacked bytes in the machine's byte order, predictor undone, at least the rows that lie in the picture. */

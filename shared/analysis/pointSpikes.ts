@@ -20,9 +20,9 @@ export function spikes({ x, y, value }: ValuedPoints): Uint8Array {
   const differences = new Float64Array(x.length);
   for (let point = 0; point < x.length; point++) {
     const count = gather(squares, point, value, around);
-    differences[point] = count < leastAround ? 0 : value[point]! - median(around.subarray(0, count));
+    differences[point] = count < leastAround ? 0 : value[point]! - middleOf(around, count);
   }
-  const scale = 1.4826 * median(differences.map(Math.abs));
+  const scale = 1.4826 * middleOf(differences.map(Math.abs).sort(), x.length);
   return Uint8Array.from(differences, (difference) => (scale > 0 && Math.abs(difference) > limit * scale ? 1 : 0));
 }
 
@@ -51,12 +51,18 @@ function squaresOf(x: Float64Array, y: Float64Array): Squares {
   return { squareOf, start, order, cols };
 }
 
-/** Copies the values of the other points in the nine squares around one into `found`; returns how many. */
+/** Puts the values of the other points in the nine squares around one into `found` in ascending order; returns how many. */
 function gather({ squareOf, start, order, cols }: Squares, point: number, value: Float64Array, found: Float64Array): number {
   const own = squareOf[point]!;
   let count = 0;
   for (let first = own - cols - 1; first <= own + cols - 1; first += cols) {
-    for (let at = start[first]!; at < start[first + 3]!; at++) if (order[at] !== point) found[count++] = value[order[at]!]!;
+    for (let at = start[first]!; at < start[first + 3]!; at++) {
+      if (order[at] === point) continue;
+      const each = value[order[at]!]!;
+      let place = count++;
+      for (; place > 0 && found[place - 1]! > each; place--) found[place] = found[place - 1]!;
+      found[place] = each;
+    }
   }
   return count;
 }
@@ -70,9 +76,8 @@ function rangeOf(values: Float64Array): [number, number] {
   return values.length === 0 ? [0, 0] : [low, high];
 }
 
-/** Sorts what it is given. */
-function median(values: Float64Array): number {
-  const sorted = values.sort();
-  const middle = sorted.length >> 1;
-  return sorted.length === 0 ? 0 : sorted.length % 2 === 1 ? sorted[middle]! : (sorted[middle - 1]! + sorted[middle]!) / 2;
+/** Median of the first `count` values, which are in order. */
+function middleOf(sorted: Float64Array, count: number): number {
+  const middle = count >> 1;
+  return count === 0 ? 0 : count % 2 === 1 ? sorted[middle]! : (sorted[middle - 1]! + sorted[middle]!) / 2;
 }

@@ -33,7 +33,10 @@ export function inverseDistance(grid: Grid, points: ValuedPoints, { neighbours =
       const cells = cellsOfSquare(grid, col, row);
       if (cells.length === 0) continue;
       nearest.lookAround([grid.x0 + (col + SQUARE / 2) * grid.cellSizeM, grid.y0 - (row + SQUARE / 2) * grid.cellSizeM], halfDiagonal);
-      for (const cell of cells) out[cell] = nearest.meanAt(cellCentre(grid, cell));
+      for (const cell of cells) {
+        const [x, y] = cellCentre(grid, cell);
+        out[cell] = nearest.meanAt(x, y);
+      }
     }
   }
   return out;
@@ -111,9 +114,10 @@ class Nearest {
   }
 
   /** Mean at a place near the centre; the search ends where the remaining candidates must be farther than those kept. */
-  meanAt([x, y]: XY): number {
+  meanAt(x: number, y: number): number {
     const { squares, values, points } = this;
-    const offCentre = Math.hypot(x - this.centre[0], y - this.centre[1]);
+    const [east, north] = [x - this.centre[0], y - this.centre[1]];
+    const offCentre = Math.sqrt(east * east + north * north);
     let limit = this.reachM * this.reachM;
     let outer = Infinity;
     let kept = 0;

@@ -53,6 +53,8 @@ export function isMissingWord(cell: string): boolean {
 
 /** The number in a cell; thousands (also by spaces and apostrophes) are taken out, a unit behind it is split off. Empty cells and words are NaN. */
 export function cellNumber(text: string, mark: DecimalMark): CellNumber {
+  // Nearly every cell of a long table; a point may stand for thousands where the comma is the decimal mark.
+  if (/^-?\d+(?:\.\d+)?$/.test(text) && (mark === '.' || !text.includes('.'))) return { value: Number(text), unit: '' };
   const cell = text.replace(/(?<=\d)['’\u00a0\u2009\u202f](?=\d{3})/g, '');
   // A comma with other than three digits behind it parts no thousands, whatever the rest of the table does.
   const plain = mark === ',' ? cell.replace(/\.(?=\d{3}(\D|$))/g, '').replace(',', '.') : cell.replace(/,(?=\d{3}(\D|$))/g, '').replace(/^([+-]?\d+),(?=\d+(\D|$))/, '$1.');

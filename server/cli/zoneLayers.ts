@@ -36,9 +36,9 @@ export async function readLayer(block: Block, argument: LayerArgument, { layerWe
   const format = await formatOf(argument);
   const { cells, kind, notes } = await (format === 'geotiff' ? fromPicture(block, argument, shared) : format === 'table' ? fromTable(block, argument) : fromShapes(block, argument));
   const factor = factorOf(argument);
-  const inUnit = factor === 1 ? cells : cells.map((value) => value * factor);
+  const own = factor === 1 ? cells.slice() : cells.map((value) => value * factor);
   const type = layerType(kind === 'class' ? 'soilClass' : argument.type);
-  const own = inUnit.map((value, cell) => (block.grid.share[cell]! > 0 ? value : NaN));
+  for (let cell = 0; cell < own.length; cell++) if (!(block.grid.share[cell]! > 0)) own[cell] = NaN;
   refuseImpossible(argument, own);
   const weight = weightOf(argument) ?? (layerWeights === 'equal' ? 1 : null);
   return { layer: { id: argument.id, type: type.id, role: type.role, kind, cells: own, weight }, notes };
@@ -59,7 +59,9 @@ function factorOf({ purpose, options }: LayerArgument): number {
 /** A value that the layer cannot hold comes from a wrong band, unit or mark for missing values. */
 function refuseImpossible({ id, type, path }: LayerArgument, cells: Cells): void {
   const { min, max, unit } = layerType(type);
-  const odd = cells.find((value) => (min !== null && value < min) || (max !== null && value > max));
+  const [least, most] = [min ?? -Infinity, max ?? Infinity];
+  let odd: number | undefined;
+  for (let cell = 0; cell < cells.length && odd === undefined; cell++) if (cells[cell]! < least || cells[cell]! > most) odd = cells[cell];
   if (odd === undefined) return;
   throw new BadInput(`${path}: layer "${id}" has the value ${Number(odd.toPrecision(6))}${unit === '' ? '' : ` ${unit}`}, outside ${min ?? 'any'} to ${max ?? 'any'}; check band, unit (#unit=) and the mark for missing values (#nodata=).`);
 }

@@ -17,30 +17,37 @@ export interface Partition {
   readonly total: number;
 }
 
-/** Means, sizes and sums of squares of a labelled table. */
-export function describePartition(points: PointTable, labels: ArrayLike<number>, k: number): Partition {
+/** Sum of squared distances to the mean of all points: the same for every partition of them. */
+export function totalSquares({ values, count, dimensions }: PointTable): number {
+  const grand = new Float64Array(dimensions);
+  for (let at = 0; at < values.length; at += dimensions) for (let f = 0; f < dimensions; f++) grand[f]! += values[at + f]! / count;
+  let total = 0;
+  for (let at = 0; at < values.length; at += dimensions) {
+    for (let f = 0; f < dimensions; f++) {
+      const difference = values[at + f]! - grand[f]!;
+      total += difference * difference;
+    }
+  }
+  return total;
+}
+
+/** Means, sizes and sums of squares of a labelled table; `total` where it is known already. */
+export function describePartition(points: PointTable, labels: ArrayLike<number>, k: number, total = totalSquares(points)): Partition {
   const { values, count, dimensions } = points;
   const means = new Float64Array(k * dimensions);
   const sizes = new Float64Array(k);
-  const grand = new Float64Array(dimensions);
   for (let point = 0; point < count; point++) {
     const zone = labels[point]!;
-    sizes[zone] = sizes[zone]! + 1;
-    for (let f = 0; f < dimensions; f++) {
-      const value = values[point * dimensions + f]!;
-      means[zone * dimensions + f] = means[zone * dimensions + f]! + value;
-      grand[f] = grand[f]! + value / count;
-    }
+    sizes[zone]! += 1;
+    for (let f = 0; f < dimensions; f++) means[zone * dimensions + f]! += values[point * dimensions + f]!;
   }
   for (let zone = 0; zone < k; zone++) for (let f = 0; f < dimensions; f++) means[zone * dimensions + f] = means[zone * dimensions + f]! / sizes[zone]!;
   const withinByZone = new Float64Array(k);
-  let total = 0;
   for (let point = 0; point < count; point++) {
     const zone = labels[point]!;
     for (let f = 0; f < dimensions; f++) {
-      const value = values[point * dimensions + f]!;
-      withinByZone[zone] = withinByZone[zone]! + (value - means[zone * dimensions + f]!) ** 2;
-      total += (value - grand[f]!) ** 2;
+      const difference = values[point * dimensions + f]! - means[zone * dimensions + f]!;
+      withinByZone[zone]! += difference * difference;
     }
   }
   return { means, sizes, withinByZone, within: withinByZone.reduce((sum, part) => sum + part, 0), total };

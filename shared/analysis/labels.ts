@@ -5,7 +5,9 @@ import type { Cells, Labels } from './grid.ts';
 
 /** Highest label in use; 0 when there is none. */
 export function highestLabel(labels: Labels): number {
-  return labels.reduce((highest, label) => Math.max(highest, label), 0);
+  let highest = 0;
+  for (let cell = 0; cell < labels.length; cell++) if (labels[cell]! > highest) highest = labels[cell]!;
+  return highest;
 }
 
 /** Cells of each label, by label; `[0]` counts the cells outside. */
@@ -30,7 +32,9 @@ export function meanPerLabel(labels: Labels, layer: Cells): Float64Array {
 
 /** Labels under other numbers: `numbers[old]` is the new number; 0 stays 0. */
 export function relabelled(labels: Labels, numbers: ArrayLike<number>): Labels {
-  return labels.map((label) => (label === 0 ? 0 : numbers[label]!));
+  const out = new Uint8Array(labels.length);
+  for (let cell = 0; cell < labels.length; cell++) if (labels[cell] !== 0) out[cell] = numbers[labels[cell]!]!;
+  return out;
 }
 
 /**

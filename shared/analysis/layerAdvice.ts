@@ -11,7 +11,7 @@ import type { Cells, Grid } from './grid.ts';
 import { edgeComparison, type EdgeCoincidence } from './layerAdviceEdges.ts';
 import { quantileOfSorted } from './quantile.ts';
 import type { Random } from './random.ts';
-import { evidenceField, type EvidenceField } from './verdictField.ts';
+import { commonCells, evidenceField, type EvidenceField } from './verdictField.ts';
 
 export type LayerAdviceCode = 'evidence' | 'repeats' | 'context-off' | 'context-offered' | 'only-context';
 
@@ -104,17 +104,18 @@ export interface EdgeTask {
 /** Context layers that differ within the block and cover nearly all of what the evidence covers; null when there is none. */
 export function edgeTask(grid: Grid, layers: readonly AdvisableLayer[]): EdgeTask | null {
   const evidence = layers.filter(isEvidence);
+  if (evidence.length === 0) return null;
+  const isMeasured = commonCells(grid, evidence.map(({ cells }) => cells));
   const covered = (layer: AdvisableLayer) => {
     let both = 0;
     let measured = 0;
-    for (let cell = 0; cell < grid.inside.length; cell++) {
-      if (grid.inside[cell] === 0 || evidence.some(({ cells }) => Number.isNaN(cells[cell]!))) continue;
+    for (let cell = 0; cell < isMeasured.length; cell++) {
+      if (isMeasured[cell] === 0) continue;
       measured++;
       if (!Number.isNaN(layer.cells[cell]!)) both++;
     }
     return measured > 0 && both / measured >= LEAST_COVERED;
   };
-  if (evidence.length === 0) return null;
   const others = layers.filter((layer) => !isEvidence(layer) && covered(layer));
   const compared = others.map((layer) => ({ id: layer.id, columns: columnsOf(layer) })).filter(({ columns }) => columns.length > 0);
   if (compared.length === 0) return null;

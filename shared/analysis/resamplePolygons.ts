@@ -24,7 +24,9 @@ export function polygonMeans(grid: GridFrame, features: readonly ValuedPolygons<
       weights[cell]! += share;
     });
   }
-  return Float32Array.from(sums, (sum, cell) => (weights[cell]! > 1e-6 ? sum / weights[cell]! : NaN));
+  const means = new Float32Array(sums.length);
+  for (let cell = 0; cell < means.length; cell++) means[cell] = weights[cell]! > 1e-6 ? sums[cell]! / weights[cell]! : NaN;
+  return means;
 }
 
 export interface ClassCells {

@@ -123,7 +123,9 @@ export class CellSums implements PixelSink {
   /** Share of each cell's area under pixels with data, 0…1. */
   covered(): Float32Array {
     const { values, bands, cols, rows } = this.sums;
-    return Float32Array.from(values.subarray(bands * cols * rows), (weight) => Math.min(1, weight * this.weightOfPixel));
+    const shares = new Float32Array(cols * rows);
+    for (let cell = 0, at = bands * cols * rows; cell < shares.length; cell++, at++) shares[cell] = Math.min(1, values[at]! * this.weightOfPixel);
+    return shares;
   }
 }
 

@@ -4,7 +4,7 @@
  */
 import type { Labels } from './grid.ts';
 import { PatchMerger } from './sieveMerger.ts';
-import { eachContact, findPatches, type Connectivity } from './sievePatches.ts';
+import { eachContact, findPatches, type Connectivity, type Patches } from './sievePatches.ts';
 
 export interface SieveOptions {
   /** Patches with fewer cells than this are removed. */
@@ -27,8 +27,7 @@ export function sieveByBorder(labels: Labels, cols: number, { minCells, connecti
   if (!patches.sizes.some((size) => size < minCells)) return new Uint8Array(labels);
   const merger = new PatchMerger(patches, minCells);
   eachContact(patches, cols, connectivity, (a, b, isEdge) => merger.addBorder(a, b, isEdge ? 1 : 0));
-  const labelOf = merger.mergeSmall();
-  return labels.map((label, cell) => (label === 0 ? 0 : labelOf[patches.patchOf[cell]!]!));
+  return labelsOfPatches(patches, merger.mergeSmall());
 }
 
 /**
@@ -55,7 +54,13 @@ export function sieveByLargestNeighbour(labels: Labels, cols: number, { minCells
     }
     return at === -1 || sizes[at]! < minCells ? own : patches.labels[at]!;
   });
-  return labels.map((label, cell) => (label === 0 ? 0 : labelOf[patches.patchOf[cell]!]!));
+  return labelsOfPatches(patches, labelOf);
+}
+
+function labelsOfPatches({ patchOf }: Patches, labelOf: Uint8Array): Labels {
+  const out = new Uint8Array(patchOf.length);
+  for (let cell = 0; cell < out.length; cell++) if (patchOf[cell] !== -1) out[cell] = labelOf[patchOf[cell]!]!;
+  return out;
 }
 
 export interface SmallPatch {

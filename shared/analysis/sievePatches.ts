@@ -60,15 +60,17 @@ export function eachContact(patches: Patches, cols: number, connectivity: Connec
   const visit = (a: number, b: number, isEdge: boolean) => {
     if (a !== b && a !== -1 && b !== -1) meet(a, b, isEdge);
   };
-  for (let cell = 0; cell < patchOf.length; cell++) {
-    const patch = patchOf[cell]!;
-    if (patch === -1) continue;
-    const col = cell % cols;
-    const below = cell + cols < patchOf.length;
-    if (col + 1 < cols) visit(patch, patchOf[cell + 1]!, true);
-    if (below) visit(patch, patchOf[cell + cols]!, true);
-    if (connectivity === 4 || !below) continue;
-    if (col + 1 < cols) visit(patch, patchOf[cell + cols + 1]!, false);
-    if (col > 0) visit(patch, patchOf[cell + cols - 1]!, false);
+  const rows = patchOf.length / cols;
+  for (let row = 0, cell = 0; row < rows; row++) {
+    const below = row + 1 < rows;
+    for (let col = 0; col < cols; col++, cell++) {
+      const patch = patchOf[cell]!;
+      if (patch === -1) continue;
+      if (col + 1 < cols) visit(patch, patchOf[cell + 1]!, true);
+      if (below) visit(patch, patchOf[cell + cols]!, true);
+      if (connectivity === 4 || !below) continue;
+      if (col + 1 < cols) visit(patch, patchOf[cell + cols + 1]!, false);
+      if (col > 0) visit(patch, patchOf[cell + cols - 1]!, false);
+    }
   }
 }

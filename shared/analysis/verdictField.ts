@@ -28,9 +28,8 @@ export interface FieldOptions {
 
 /** Throws AnalysisError when no layer is given, too few cells have all layers, or a layer has one value only. */
 export function evidenceField(grid: Grid, layers: readonly ArrayLike<number>[], { mostCells = Infinity, coarsestCellM = 0 }: FieldOptions): EvidenceField {
-  const mask = Uint8Array.from(grid.inside);
-  for (const layer of layers) for (let cell = 0; cell < mask.length; cell++) if (Number.isNaN(layer[cell]!)) mask[cell] = 0;
-  const count = mask.reduce((sum, value) => sum + value, 0);
+  const mask = commonCells(grid, layers);
+  const count = cellsIn(mask);
   if (layers.length === 0 || count < LEAST_CELLS) {
     throw new AnalysisError('no-common-cells', `The chosen layers have ${count} cells in common; at least ${LEAST_CELLS} are needed. Leave out the layer that covers least, or use smaller cells.`);
   }
@@ -38,6 +37,19 @@ export function evidenceField(grid: Grid, layers: readonly ArrayLike<number>[], 
   const byCount = Math.ceil(Math.sqrt(count / mostCells) - 1e-9);
   const side = Math.max(1, bySize, byCount);
   return standardiseField(averageSquares({ width: grid.cols, height: grid.rows, mask }, layers, side), grid.cellSizeM * side);
+}
+
+/** 1 for each cell inside the block that has every layer. */
+export function commonCells({ inside }: Grid, layers: readonly ArrayLike<number>[]): Uint8Array {
+  const mask = new Uint8Array(inside);
+  for (const layer of layers) for (let cell = 0; cell < mask.length; cell++) if (Number.isNaN(layer[cell]!)) mask[cell] = 0;
+  return mask;
+}
+
+function cellsIn(mask: Uint8Array): number {
+  let count = 0;
+  for (let cell = 0; cell < mask.length; cell++) count += mask[cell]!;
+  return count;
 }
 
 interface RawField extends MaskedPlane {
@@ -50,19 +62,22 @@ function averageSquares(plane: MaskedPlane, layers: readonly ArrayLike<number>[]
   const height = Math.ceil(plane.height / side);
   const counts = new Float64Array(width * height);
   const sums = layers.map(() => new Float64Array(width * height));
-  for (let cell = 0; cell < plane.mask.length; cell++) {
-    if (plane.mask[cell] === 0) continue;
-    const row = Math.floor(cell / plane.width);
-    const square = Math.floor(row / side) * width + Math.floor((cell - row * plane.width) / side);
-    counts[square] = counts[square]! + 1;
-    for (let l = 0; l < layers.length; l++) sums[l]![square] = sums[l]![square]! + layers[l]![cell]!;
+  const squareCol = Int32Array.from({ length: plane.width }, (_, col) => Math.floor(col / side));
+  for (let row = 0, cell = 0; row < plane.height; row++) {
+    const firstSquare = Math.floor(row / side) * width;
+    for (let col = 0; col < plane.width; col++, cell++) {
+      if (plane.mask[cell] === 0) continue;
+      const square = firstSquare + squareCol[col]!;
+      counts[square]!++;
+      for (let l = 0; l < layers.length; l++) sums[l]![square]! += layers[l]![cell]!;
+    }
   }
   const mask = Uint8Array.from(counts, (cells) => (cells >= (side * side) / 2 ? 1 : 0));
   return { width, height, mask, layers: sums.map((sum) => sum.map((total, square) => (mask[square] === 1 ? total / counts[square]! : 0))) };
 }
 
 function standardiseField(raw: RawField, cellSizeM: number): EvidenceField {
-  const cellCount = raw.mask.reduce((sum, value) => sum + value, 0);
+  const cellCount = cellsIn(raw.mask);
   return { width: raw.width, height: raw.height, mask: raw.mask, cellSizeM, cellCount, layers: raw.layers.map((layer) => standardiseClipped(layer, raw.mask)) };
 }
 

@@ -79,7 +79,9 @@ interface ProfileInput {
 /** For each cell the mean of its step across the direction. */
 function levelAcross(plane: MaskedPlane, input: ProfileInput): Float64Array {
   const { sums, counts, steps } = stepsAcross(plane, input);
-  return Float64Array.from(steps, (step) => sums[step]! / counts[step]!);
+  const levels = new Float64Array(steps.length);
+  for (let i = 0; i < levels.length; i++) levels[i] = sums[steps[i]!]! / counts[steps[i]!]!;
+  return levels;
 }
 
 /** Sum and number of cells of each step across the direction, and the step of each cell; steps are counted from the outermost cell. */

@@ -25,7 +25,8 @@ export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrow
   let cleaned: Labels = raw.labels;
   for (let pass = 0; pass < MAJORITY_PASSES; pass++) cleaned = majorityFiltered(cleaned, grid.cols);
   cleaned = withoutSmall(grid, cleaned, { smallestPatchHa, narrowestM });
-  const doubt = raw.doubt.map((value, cell) => (cleaned[cell] === raw.labels[cell] ? value : 1));
+  const doubt = raw.doubt.slice();
+  for (let cell = 0; cell < doubt.length; cell++) if (cleaned[cell] !== raw.labels[cell]) doubt[cell] = 1;
   return { labels: renumberedByMean(cleaned, orderBy), doubt };
 }
 
@@ -58,6 +59,8 @@ export function patchesPerZone({ cols, rows }: Grid, labels: Labels): Int32Array
       here[col] = run;
       if (!continues) counts[label]!++;
       if (row === 0 || labels[(row - 1) * cols + col] !== label) continue;
+      // The cell to the left has met the same run above.
+      if (continues && labels[(row - 1) * cols + col - 1] === label) continue;
       const [upper, lower] = [rootOf(above[col]!), rootOf(run)];
       if (upper === lower) continue;
       parents[lower] = upper;

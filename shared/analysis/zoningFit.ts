@@ -9,6 +9,7 @@ import { fitKMeans } from './kmeans.ts';
 import { sampleIndices, selectPoints, type PointTable } from './kmeansPoints.ts';
 import { principalComponents } from './principal.ts';
 import { seededRandom, type Random } from './random.ts';
+import { commonCells } from './verdictField.ts';
 import { MOST_ZONES } from './verdictGap.ts';
 
 /** Cells that the fit is made on. */
@@ -33,21 +34,25 @@ export interface FeatureTable {
 }
 
 export function featureTable(grid: Grid, columns: readonly Float32Array[], usePrincipalComponents: boolean): FeatureTable {
-  const cells: number[] = [];
-  const incomplete: number[] = [];
-  for (let cell = 0; cell < grid.inside.length; cell++) {
-    if (grid.inside[cell] !== 1) continue;
-    (columns.some((column) => Number.isNaN(column[cell]!)) ? incomplete : cells).push(cell);
-  }
+  const isComplete = commonCells(grid, columns);
+  const cells = cellsWhere(isComplete, isComplete, 1);
   const values = new Float64Array(cells.length * columns.length);
-  cells.forEach((cell, point) => {
-    for (let f = 0; f < columns.length; f++) values[point * columns.length + f] = columns[f]![cell]!;
+  columns.forEach((column, f) => {
+    for (let point = 0, at = f; point < cells.length; point++, at += columns.length) values[at] = column[cells[point]!]!;
   });
   const points = { values, count: cells.length, dimensions: columns.length };
-  const rest = { cells: Int32Array.from(cells), incomplete: Int32Array.from(incomplete), columns };
+  const rest = { cells, incomplete: cellsWhere(grid.inside, isComplete, 0), columns };
   if (!usePrincipalComponents || columns.length < 2) return { ...rest, points, componentShares: null };
   const components = principalComponents(points);
   return { ...rest, points: components.scores, componentShares: components.shares };
+}
+
+/** Cells inside whose mark is the one wanted, ascending. */
+function cellsWhere(inside: Uint8Array, marks: Uint8Array, wanted: number): Int32Array {
+  const found = new Int32Array(inside.length);
+  let count = 0;
+  for (let cell = 0; cell < inside.length; cell++) if (inside[cell] === 1 && marks[cell] === wanted) found[count++] = cell;
+  return found.slice(0, count);
 }
 
 export interface ZoneFit {
@@ -119,10 +124,11 @@ export interface CellZones {
 export function zonesOnGrid(grid: Grid, table: FeatureTable, fit: ZoneFit): CellZones {
   const labels = new Uint8Array(grid.inside.length);
   const doubt = new Float32Array(grid.inside.length).fill(NaN);
-  table.cells.forEach((cell, point) => {
+  for (let point = 0; point < table.cells.length; point++) {
+    const cell = table.cells[point]!;
     labels[cell] = fit.labels[point]! + 1;
     doubt[cell] = fit.doubt[point]!;
-  });
+  }
   if (table.incomplete.length === 0) return { labels, doubt };
   const means = columnMeans(table, fit);
   for (const cell of table.incomplete) {
@@ -138,7 +144,7 @@ function columnMeans({ cells, columns }: FeatureTable, { labels, k }: ZoneFit): 
   for (const zone of labels) sizes[zone] = sizes[zone]! + 1;
   return columns.map((column) => {
     const sums = new Float64Array(k);
-    cells.forEach((cell, point) => (sums[labels[point]!] = sums[labels[point]!]! + column[cell]!));
+    for (let point = 0; point < cells.length; point++) sums[labels[point]!]! += column[cells[point]!]!;
     return sums.map((sum, zone) => sum / sizes[zone]!);
   });
 }

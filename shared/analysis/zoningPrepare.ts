@@ -74,7 +74,7 @@ export function weightedColumns(grid: Grid, layers: readonly PreparedLayer[], we
   return layers.flatMap((layer, l) => {
     const weight = weights[l]!;
     if (weight === 0) return [];
-    if (layer.kind === 'number') return [layer.standardised.map((value) => value * Math.sqrt(weight))];
+    if (layer.kind === 'number') return [weight === 1 ? layer.standardised : layer.standardised.map((value) => value * Math.sqrt(weight))];
     const classes = [...new Set(insideValues(grid, layer.cells))].sort((a, b) => a - b);
     const height = Math.sqrt(weight / 2);
     return classes.map((code) => layer.standardised.map((value) => (Number.isNaN(value) ? NaN : value === code ? height : 0)));

@@ -3,7 +3,7 @@
  * In: feature table and fits. Out: one row for each k; figures without meaning are null.
  */
 
-import { calinskiHarabasz, daviesBouldin, describePartition, varianceExplained } from './clusterQuality.ts';
+import { calinskiHarabasz, daviesBouldin, describePartition, totalSquares, varianceExplained } from './clusterQuality.ts';
 import { silhouettes } from './clusterQualitySilhouette.ts';
 import { halfSplitStability } from './clusterQualityStability.ts';
 import { fuzziness, membershipsFrom } from './fuzzy.ts';
@@ -24,8 +24,9 @@ export function rateFits({ points }: FeatureTable, fits: readonly ZoneFit[], see
   const sample = selectPoints(points, sampleIndices(points.count, SAMPLE, streamOf(seed, SAMPLE_STREAM)));
   const several = fits.filter(({ k }) => k > 1);
   const silhouetteOf = silhouettes(sample, several.map(({ centres }) => assignToCentres(sample, centres)));
+  const total = totalSquares(points);
   return fits.map((fit) => {
-    const partition = describePartition(points, fit.labels, fit.k);
+    const partition = describePartition(points, fit.labels, fit.k, total);
     const common = { k: fit.k, inertia: fit.inertia, varianceExplained: varianceExplained(partition) };
     if (fit.k === 1) return { ...common, silhouette: null, calinskiHarabasz: null, daviesBouldin: null, stability: null, fuzzinessIndex: null, classificationEntropy: null };
     const { fpi, nce } = fuzziness(membershipsFrom(sample, fit.centres), fit.k);

@@ -121,6 +121,7 @@ function finish(grid: Grid, sink: WindowedSink, { understood, bands, request: { 
   const bandMeans: BandMeans | null = quantity.kind === 'band' ? null : Object.fromEntries(INDICES[quantity.index].bands.map((name, i) => [name, means[i]!]));
   const values = quantity.kind === 'band' ? means[0]! : indexCells(quantity.index, bandMeans!);
   const covered = sink instanceof CellSums ? sink.covered() : values.map((value) => (Number.isNaN(value) ? 0 : 1));
-  const cells = values.map((value, cell) => (covered[cell]! + 1e-6 < minCoverage ? NaN : value));
+  const cells = values.slice();
+  for (let cell = 0; cell < cells.length; cell++) if (covered[cell]! + 1e-6 < minCoverage) cells[cell] = NaN;
   return { gridKey: grid.key, cells, covered, reaches: sink.window !== null, bandMeans };
 }

@@ -11,10 +11,17 @@ const loadBeside = () => import('../cli/zoneBeside.ts');
 
 parentPort!.on('message', (request: ThreadRequest) => {
   void answerTo(request).then((answer) => {
-    parentPort!.postMessage(answer);
+    parentPort!.postMessage(answer, largeBuffers(answer));
     void loadBeside();
   });
 });
+
+/** Cells and sums are handed over, not copied: this thread has no more use for them. */
+function largeBuffers(answer: ThreadAnswer): ArrayBuffer[] {
+  if (!('value' in answer) || !('layers' in answer.value)) return [];
+  const { layers, sums } = answer.value;
+  return [...new Set([...layers.map(({ layer }) => layer.cells), ...(sums ?? [])].map(({ buffer }) => buffer as ArrayBuffer))];
+}
 
 async function answerTo(request: ThreadRequest): Promise<ThreadAnswer> {
   try {

@@ -3,7 +3,7 @@ import { ceilGuarded } from './sampleSize.ts';
 
 /**
  * Vines, clusters on a vine, berries on a cluster: how to split the work.
- * V = S_b²/n + S_w²/(nm) + S_e²/(nmk). Sources: Cochran 1977 ch. 10–11; de Gruijter et al. 2006, Sampling for
+ * V = (1 − n/N)S_b²/n + S_w²/(nm) + S_e²/(nmk); vines run out, clusters of a vine are taken as many. Sources: Cochran 1977 ch. 10–11; de Gruijter et al. 2006, Sampling for
  * Natural Resource Monitoring; Brus, Spatial Sampling with R, ch. 7; design effect Kish 1965.
  * S_b is the true spread between vines, with the within part taken out; S_w and S_e likewise.
  */
@@ -34,13 +34,15 @@ export interface StageCosts {
 
 export interface StageCounts {
   readonly vines: number;
+  /** Vines there are; without end when left out. */
+  readonly of?: number;
   readonly perVine: number;
   readonly perCluster?: number;
 }
 
-export function stageVariance(variances: StageVariances, { vines, perVine, perCluster = 1 }: StageCounts): number {
+export function stageVariance(variances: StageVariances, { vines, of = Infinity, perVine, perCluster = 1 }: StageCounts): number {
   const { betweenVines, withinVine, withinCluster = 0 } = variances;
-  return betweenVines / vines + withinVine / (vines * perVine) + withinCluster / (vines * perVine * perCluster);
+  return (betweenVines * (1 - vines / of)) / vines + withinVine / (vines * perVine) + withinCluster / (vines * perVine * perCluster);
 }
 
 export function stageCost(costs: StageCosts, { vines, perVine, perCluster = 1 }: StageCounts): number {
@@ -59,7 +61,7 @@ export function bestPerCluster(variances: StageVariances, costs: StageCosts): nu
 
 export type StageTarget = { readonly variance: number } | { readonly budget: number };
 
-export interface StageSplit extends Required<StageCounts> {
+export interface StageSplit extends Required<Omit<StageCounts, 'of'>> {
   readonly variance: number;
   readonly cost: number;
   /** Unrounded best numbers of the formula; perCluster is null for two stages. */

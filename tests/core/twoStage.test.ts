@@ -57,6 +57,21 @@ describe('vines and clusters', () => {
   });
 });
 
+describe('two stages where the vines run out', () => {
+  it('gives the parts behind the statement of Rankine, Cellier and Boehm about plots of 200 vines', () => {
+    // Am. J. Enol. Vitic. 13:58 (1962): 0.25 % from one cluster of each of 25 vines, or two of each of 21, of 200.
+    // Both equations hold for S_b² = 1.0625/0.915 and S_w² = 1.5625 − 0.875 S_b² (by hand; 1.1612 and 0.5464 with R 4.2.2).
+    const betweenVines = 1.0625 / 0.915;
+    const variances = { betweenVines, withinVine: 1.5625 - 0.875 * betweenVines };
+    expectRelative(variances.betweenVines, 1.1612, 1e-5);
+    expectRelative(variances.withinVine, 0.5464, 1e-4);
+    expectRelative(Math.sqrt(stageVariance(variances, { vines: 25, of: 200, perVine: 1 })), 0.25, 1e-12);
+    expectRelative(Math.sqrt(stageVariance(variances, { vines: 21, of: 200, perVine: 2 })), 0.25, 1e-12);
+    // Every vine read leaves what differs within vines.
+    expectRelative(stageVariance(variances, { vines: 200, of: 200, perVine: 2 }), variances.withinVine / 400, 1e-12);
+  });
+});
+
 describe('vines, clusters and berries', () => {
   const variances = { betweenVines: 0.5, withinVine: 0.9, withinCluster: 2 };
   const costs = { perVine: 3, perCluster: 1, perBerry: 0.05 };

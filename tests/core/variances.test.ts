@@ -14,6 +14,21 @@ const MICHELSO = '85 74 90 107 93 85 95 98 98 88 100 98 93 65 76 81 100 100 96 9
 
 const LEW = '-213 -564 -35 -15 141 115 -420 -360 203 -338 -431 194 -220 -513 154 -125 -559 92 -21 -579 -52 99 -543 -175 162 -457 -346 204 -300 -474 164 -107 -572 -8 83 -541 -224 180 -420 -374 201 -236 -531 83 27 -564 -112 131 -507 -254 199 -311 -495 143 -46 -579 -90 136 -472 -338 202 -287 -477 169 -124 -568 17 48 -568 -135 162 -430 -422 172 -74 -577 -13 92 -534 -243 194 -355 -465 156 -81 -578 -64 139 -449 -384 193 -198 -538 110 -44 -577 -6 66 -552 -164 161 -460 -344 205 -281 -504 134 -28 -576 -118 156 -437 -381 200 -220 -540 83 11 -568 -160 172 -414 -408 188 -125 -572 -32 139 -492 -321 205 -262 -504 142 -83 -574 0 48 -571 -106 137 -501 -266 190 -391 -406 194 -186 -553 83 -13 -577 -49 103 -515 -280 201 300 -506 131 -45 -578 -80 138 -462 -361 201 -211 -554 32 74 -533 -235 187 -372 -442 182 -147 -566 25 68 -535 -244 194 -351 -463 174 -125 -570 15 72 -550 -190 172 -424 -385 198 -218 -536 96'.split(' ').map(Number);
 
+/** The first digits of pi, 3 first: Machin's formula 16 atan(1/5) − 4 atan(1/239) in whole numbers. */
+function digitsOfPi(count: number): number[] {
+  const one = 10n ** BigInt(count + 10);
+  const arctanOfInverse = (x: bigint): bigint => {
+    let [power, sum] = [one / x, one / x];
+    for (let k = 1n; power > 0n; k++) {
+      power /= x * x;
+      sum += (k % 2n === 0n ? power : -power) / (2n * k + 1n);
+    }
+    return sum;
+  };
+  const pi = 16n * arctanOfInverse(5n) - 4n * arctanOfInverse(239n);
+  return [...pi.toString().slice(0, count)].map(Number);
+}
+
 describe('mean and standard deviation of the NIST reference sets', () => {
   const sets: readonly (readonly [string, number[], { mean: number; sd: number; lag: number; tolerance: number }])[] = [
     ['NumAcc1', [10000001, 10000003, 10000002], { mean: 10000002, sd: 1, lag: -0.5, tolerance: 1e-15 }],
@@ -22,6 +37,8 @@ describe('mean and standard deviation of the NIST reference sets', () => {
     ['NumAcc4', alternating(10000000.2, 10000000.1, 10000000.3), { mean: 10000000.2, sd: 0.1, lag: -0.999, tolerance: 1e-7 }],
     ['Mavro', MAVRO, { mean: 2.001856, sd: 0.000429123454003053, lag: 0.937989183438248, tolerance: 1e-11 }],
     ['Michelso', MICHELSO, { mean: 299.8524, sd: 0.0790105478190518, lag: 0.535199668621283, tolerance: 1e-11 }],
+    // The archive's file has a 3 where the 957th digit of pi is an 8; the certified values are those of the file.
+    ['PiDigits', digitsOfPi(5000).with(956, 3), { mean: 4.5348, sd: 2.86733906028871, lag: -0.00355099287237972, tolerance: 1e-13 }],
     ['Lew', LEW, { mean: -177.435, sd: 277.332168044316, lag: -0.307304800605679, tolerance: 1e-13 }],
   ];
 

@@ -74,9 +74,15 @@ export async function censusKnownFrom(estateId: string, blocks: readonly Pick<Bl
   return until === null || since === undefined || since <= until ? null : estateDay(estateId, since);
 }
 
-/** The grid of a block as it is now. */
+const knownGrids = new WeakMap<MultiPolygonLonLat, Grid>();
+
+/** The grid of a block as it is now; laid once for a block that was loaded, however many ask. */
 export function gridOf({ block, boundary }: Pick<BlockVines, 'block' | 'boundary'>): Grid {
-  return defineGrid(boundary, block.cellSizeM);
+  const known = knownGrids.get(boundary);
+  if (known?.cellSizeM === block.cellSizeM) return known;
+  const grid = defineGrid(boundary, block.cellSizeM);
+  knownGrids.set(boundary, grid);
+  return grid;
 }
 
 /** Zone number of every vine of the table under a zoning; 0 where the zoning says nothing. */

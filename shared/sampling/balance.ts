@@ -18,14 +18,19 @@ export function sampleSpread(units: Units, sample: readonly number[]): Spread {
   const shares = new Float64Array(sample.length);
   const squares = new Float64Array(sample.length);
   let total = 0;
+  // Plain loops: some million pairs of a vine and a target.
   for (let unit = 0; unit < units.p.length; unit++) {
+    const [x, y] = [units.x[unit]!, units.y[unit]!];
     let least = Infinity;
-    sample.forEach((chosen, i) => {
-      squares[i] = (units.x[chosen]! - units.x[unit]!) ** 2 + (units.y[chosen]! - units.y[unit]!) ** 2;
-      least = Math.min(least, squares[i]!);
-    });
-    const nearest = Array.from(squares.keys()).filter((i) => squares[i]! <= least + TIE_M2 * (1 + least));
-    for (const i of nearest) shares[i]! += units.p[unit]! / nearest.length;
+    for (let i = 0; i < sample.length; i++) {
+      const [dx, dy] = [units.x[sample[i]!]! - x, units.y[sample[i]!]! - y];
+      squares[i] = dx * dx + dy * dy;
+      if (squares[i]! < least) least = squares[i]!;
+    }
+    const tied = least + TIE_M2 * (1 + least);
+    let nearest = 0;
+    for (let i = 0; i < sample.length; i++) if (squares[i]! <= tied) nearest += 1;
+    for (let i = 0; i < sample.length; i++) if (squares[i]! <= tied) shares[i]! += units.p[unit]! / nearest;
     total += least;
   }
   const balance = shares.reduce((sum, share) => sum + (share - 1) ** 2, 0) / sample.length;

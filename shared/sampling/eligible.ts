@@ -36,13 +36,13 @@ export interface Eligible {
 
 /** The eligible vines under the strictest rule that leaves at least `needed`. */
 export function eligibleVines(input: EligibleInput, needed: number): Eligible {
-  const placeInPiece = placesFromEnds(input.table);
+  const fromEnd = placesFromEnds(input.table);
   const usable = input.candidates.filter((vine) => (input.unusable?.[vine] ?? 0) === 0);
   const steps = relaxations(input);
   let relaxed: Relaxation[] = [];
   for (const step of steps) {
     if (step.gives !== null) relaxed = [...relaxed, step.gives];
-    const vines = usable.filter((vine) => isAllowed(input, step, { vine, fromEnd: placeInPiece[vine]! }));
+    const vines = usable.filter((vine) => fromEnd[vine]! >= step.endVines && isAllowed(input, step, vine));
     if (vines.length >= needed || step === steps.at(-1)) return { vines, relaxed };
   }
   throw new Error('relaxations always end with a last step');
@@ -66,20 +66,25 @@ function relaxations({ nearBorder, rule }: EligibleInput): Step[] {
   return steps;
 }
 
-function isAllowed({ table, nearBorder }: EligibleInput, step: Step, { vine, fromEnd }: { vine: number; fromEnd: number }): boolean {
+function isAllowed({ table, nearBorder }: EligibleInput, step: Step, vine: number): boolean {
   if (step.border && (nearBorder?.[vine] ?? 0) !== 0) return false;
   const row = table.row[vine]!;
   const lastRow = table.rowStart.length - 2;
-  return fromEnd >= step.endVines && row >= step.edgeRows && row <= lastRow - step.edgeRows;
+  return row >= step.edgeRows && row <= lastRow - step.edgeRows;
 }
 
-/** How many vines stand between each vine and the nearer end of its piece. */
+const knownPlaces = new WeakMap<VineTable, Int32Array>();
+
+/** How many vines stand between each vine and the nearer end of its piece; every zone of a block asks for the same. */
 function placesFromEnds(table: VineTable): Int32Array {
+  const known = knownPlaces.get(table);
+  if (known) return known;
   const places = new Int32Array(table.count);
   for (let piece = 0; piece + 1 < table.pieceStart.length; piece++) {
     const from = table.pieceStart[piece]!;
     const last = table.pieceStart[piece + 1]! - 1;
     for (let vine = from; vine <= last; vine++) places[vine] = Math.min(vine - from, last - vine);
   }
+  knownPlaces.set(table, places);
   return places;
 }

@@ -1,6 +1,8 @@
 import type { Point } from 'geojson';
 import type { z } from 'zod';
-import { planBasis, planChoices, type PlanBasis, type PlannableZoning, type PlanSummary, type PlanView, type walkFacts, type zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import { planBasis, type PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
+import type { PlannableZoning, PlanSummary, PlanView, walkFacts, zoneDrawFacts } from '../../../shared/contracts/plans.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
@@ -47,10 +49,11 @@ export async function plannableZonings(access: Access): Promise<PlannableZoning[
   return blocks.flatMap((block) => zonings.filter(({ blockId }) => blockId === block.id).map(({ id, number }) => ({ id, number, blockId: block.id, blockName: block.name })));
 }
 
-export async function viewPlan(access: Access, planId: string): Promise<PlanView> {
+/** `known` spares reading the block again where it was just read. */
+export async function viewPlan(access: Access, planId: string, known?: BlockVines): Promise<PlanView> {
   const plan = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
   const [summary] = await summariesOf(access, [plan]);
-  const ground = await loadBlockVines(access.estateId, plan.blockId);
+  const ground = known ?? (await loadBlockVines(access.estateId, plan.blockId));
   const targets = await Target.query().where({ estateId: access.estateId, planId }).orderBy('walkOrder').select('targets.*', asGeoJson('position', 7).as('position'));
   const record = plan.result as PlanRecord;
   const draws = plan.draws as StoredDraw[];

@@ -1,8 +1,9 @@
 import { randomInt } from 'node:crypto';
 import type { Transaction } from 'objection';
 import type { z } from 'zod';
-import type { NewPlan, PlanChange, PlanView, planRedraw } from '../../../shared/contracts/plans.ts';
-import { planChoices } from '../../../shared/contracts/plans.ts';
+import type { NewPlan, PlanChange, planRedraw } from '../../../shared/contracts/planChoices.ts';
+import type { PlanView } from '../../../shared/contracts/plans.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import { pooledBasis } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
@@ -30,7 +31,7 @@ export async function makePlan(access: Access, zoningId: string, { name, seed = 
     await writeAudit(trx, access, { action: 'plans.make', subjectType: 'plan', subjectId: plan.id, subjectName: name, after: { choices, seed, vines: composed.draw.targets.length } });
     return plan.id;
   });
-  return viewPlan(access, planId);
+  return viewPlan(access, planId, composed.planGround.ground);
 }
 
 /** Changes a draft. Its vines are drawn anew with the same seed: zones whose count stays keep their vines. */
@@ -44,7 +45,7 @@ export async function changePlan(access: Access, planId: string, change: PlanCha
     if (composed) await writeDraw(trx, planId, access.estateId, composed);
     await writeAudit(trx, access, { action: 'plans.change', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before: { name: plan.name, choices: plan.options }, after: change });
   });
-  return viewPlan(access, planId);
+  return viewPlan(access, planId, composed?.planGround.ground);
 }
 
 /** Draws other vines with another seed. The earlier draw stays on record with the reason. */
@@ -62,7 +63,7 @@ export async function redrawPlan(access: Access, planId: string, { reason, seed 
     await writeDraw(trx, planId, access.estateId, composed);
     await writeAudit(trx, access, { action: 'plans.redraw', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before: { seed: plan.seed }, after: { seed }, reason });
   });
-  return viewPlan(access, planId);
+  return viewPlan(access, planId, composed.planGround.ground);
 }
 
 /** From now on the vines stay as drawn. */

@@ -1,5 +1,5 @@
 import { seededRandom } from '../../shared/analysis/random.ts';
-import { newPlan } from '../../shared/contracts/plans.ts';
+import { newPlan } from '../../shared/contracts/planChoices.ts';
 import { newReading } from '../../shared/contracts/readings.ts';
 import { newRestriction } from '../../shared/contracts/restrictions.ts';
 import { newRound } from '../../shared/contracts/rounds.ts';

@@ -1,6 +1,8 @@
 import type { XY } from '../../shared/geo/coordinates.ts';
 import type { BlockRows } from '../../shared/geo/rows.ts';
 import { sheetOfBlock, shareBlockWalk, type BlockWalk } from '../../shared/sampling/walkBlock.ts';
+import type { PaceChoices } from '../../shared/contracts/planChoices.ts';
+import { pacedGround, type Terrain } from '../../shared/sampling/terrain.ts';
 import type { SheetLine } from '../../shared/sampling/walkSheet.ts';
 import { walkTime } from '../../shared/sampling/walkTime.ts';
 
@@ -9,6 +11,8 @@ export interface ShareInput {
   vines: { rowIndex: number; ordinal: number; zone: number; serviceS: number }[];
   gateXY: XY;
   people: number;
+  pace: PaceChoices;
+  terrain: Terrain | null;
   /** Back to the gate (usual), or over at the last vine. */
   end?: 'gate' | 'anywhere';
 }
@@ -30,9 +34,9 @@ export interface SharedRound {
 }
 
 /** The walks of a round, one a person, each from the gate and back (or ending at the last vine), with loads as even as contiguous runs of rows allow. */
-export function shareRound({ rows, vines, gateXY, people, end = 'gate' }: ShareInput): SharedRound {
+export function shareRound({ rows, vines, gateXY, people, pace, terrain, end = 'gate' }: ShareInput): SharedRound {
   const serviceSOf = (vine: number) => vines[vine]!.serviceS;
-  const { walks, isEven } = shareBlockWalk({ rows, vines, gateXY, end }, { people, serviceSOf });
+  const { walks, isEven } = shareBlockWalk({ rows, vines, gateXY, end, ground: pacedGround(pace, terrain) }, { people, serviceSOf });
   return {
     isEven,
     walks: walks.map((walk: BlockWalk) => {

@@ -1,7 +1,9 @@
 import { Router } from 'express';
 import { z } from 'zod';
 import { id } from '../../shared/contracts/common.ts';
-import { dayQuestion, divisionQuestion, newPlan, planChange, planRedraw, spreadQuestion, walkQuestion } from '../../shared/contracts/plans.ts';
+import { newPlan, planChange, planRedraw, basisQuestion } from '../../shared/contracts/planChoices.ts';
+import { divisionQuestion } from '../../shared/contracts/plans.ts';
+import { dayQuestion, walkQuestion } from '../../shared/contracts/planWalks.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { dayOfPlans } from '../services/plans/dayOfPlans.ts';
 import { divisionsOf } from '../services/plans/divisions.ts';
@@ -21,7 +23,7 @@ export function planRoutes(): Router {
   const read = allow('plans.margins', 'propose');
 
   router.get('/zonings/:zoningId/plan-basis', read, async (request, response) => {
-    response.json(await planBasisOf(accessOf(request), idParam(request, 'zoningId'), spreadQuestion.parse(request.query)));
+    response.json(await planBasisOf(accessOf(request), idParam(request, 'zoningId'), basisQuestion.parse(request.query)));
   });
   router.post('/zonings/:zoningId/divisions', read, async (request, response) => {
     response.json({ items: await divisionsOf(accessOf(request), idParam(request, 'zoningId'), divisionQuestion.parse(request.body).choices) });

@@ -14,6 +14,15 @@ export interface AllocationZone {
   readonly cost?: number;
   readonly minimum?: number;
   readonly maximum?: number;
+  /** Share of the variance that reading every vine would take away (see `halfWidth`); 1 when left out. */
+  readonly finiteShare?: number;
+  /** Degrees of freedom of a spread that was measured before; from the samples themselves when left out. */
+  readonly spreadDf?: number | null;
+}
+
+/** f/N: what a finite zone takes off 1/n. */
+export function finiteTerm({ vines, finiteShare = 1 }: { readonly vines: number; readonly finiteShare?: number }): number {
+  return finiteShare / vines;
 }
 
 export function costOf(zone: AllocationZone): number {
@@ -36,14 +45,14 @@ function sumOver(zones: readonly AllocationZone[], term: (zone: AllocationZone) 
   return zones.reduce((sum, zone) => sum + term(zone), 0);
 }
 
-/** ΣW²(1 − n/N)S²/n: variance of the mean over all zones. Infinity when a zone with spread has no sample. */
+/** ΣW²(1 − f·n/N)S²/n: variance of the mean over all zones. Infinity when a zone with spread has no sample. */
 export function allocationVariance(zones: readonly AllocationZone[], counts: readonly number[]): number {
   const all = totalVines(zones);
   return zones.reduce((sum, zone, i) => {
     const n = counts[i]!;
-    if (zone.sd === 0 || n >= zone.vines) return sum;
     const share = zone.vines / all;
-    return sum + share * share * zone.sd * zone.sd * (1 / n - 1 / zone.vines);
+    const left = 1 / n - finiteTerm(zone);
+    return zone.sd === 0 || left <= 0 ? sum : sum + share * share * zone.sd * zone.sd * left;
   }, 0);
 }
 
@@ -99,10 +108,10 @@ export function costTotal(zones: readonly AllocationZone[], variance: number): n
   return (dear * cheap) / (variance + populationTerm(zones));
 }
 
-/** ΣW·S²/N with N the vines of all zones: what the finite zones take off the variance. */
+/** ΣW·f·S²/N with N the vines of all zones: what the finite zones take off the variance. */
 function populationTerm(zones: readonly AllocationZone[]): number {
   const all = totalVines(zones);
-  return sumOver(zones, (zone) => ((zone.vines / all) * zone.sd * zone.sd) / all);
+  return sumOver(zones, (zone) => ((zone.finiteShare ?? 1) * (zone.vines / all) * zone.sd * zone.sd) / all);
 }
 
 /**

@@ -1,4 +1,4 @@
-import { allocationVariance, maximumOf, minimumOf, neymanTotal, targetVariance, totalVines, type AllocationZone } from './allocate.ts';
+import { allocationVariance, finiteTerm, maximumOf, minimumOf, neymanTotal, targetVariance, totalVines, type AllocationZone } from './allocate.ts';
 import { allocationMethod, type AllocationMethodId } from './allocationMethods.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { criticalT, criticalZ } from './quantiles.ts';
@@ -29,22 +29,28 @@ export interface BlockAnswer {
 export function blockPrecision(zones: readonly AllocationZone[], counts: readonly number[], how: { confidence: number; factor?: 't' | 'z' }): Omit<BlockAnswer, 'reached' | 'atMinimum'> {
   const variance = allocationVariance(zones, counts);
   const df = satterthwaite(zones, counts, variance);
-  const factor = (how.factor ?? 't') === 'z' ? criticalZ(how.confidence) : criticalT(how.confidence, df);
+  const isKnown = variance === 0 || (df > 0 && Number.isFinite(variance));
+  const factor = !isKnown ? Number.NaN : (how.factor ?? 't') === 'z' ? criticalZ(how.confidence) : criticalT(how.confidence, df);
+  // A zone with a single sample and more vines than that says nothing of its spread.
   const halfWidth = variance === 0 ? 0 : factor * Math.sqrt(variance);
   return { counts: [...counts], total: counts.reduce((sum, n) => sum + n, 0), variance, df, halfWidth };
 }
 
-/** Degrees of freedom of the mean over zones (Satterthwaite 1946), from the planned counts. */
+/**
+ * Degrees of freedom of the mean over zones (Satterthwaite 1946): of the planned counts, or of the pilot where its spread
+ * stays fixed, which carries the two-stage rule over to several zones.
+ */
 function satterthwaite(zones: readonly AllocationZone[], counts: readonly number[], variance: number): number {
   if (variance === 0) return Infinity;
   const all = totalVines(zones);
   let sum = 0;
   zones.forEach((zone, i) => {
     const n = counts[i]!;
-    if (n >= zone.vines || zone.sd === 0) return;
+    const left = 1 / n - finiteTerm(zone);
+    if (left <= 0 || zone.sd === 0) return;
     const share = zone.vines / all;
-    const part = share * share * zone.sd * zone.sd * (1 / n - 1 / zone.vines);
-    sum += (part * part) / (n - 1);
+    const part = share * share * zone.sd * zone.sd * left;
+    sum += (part * part) / (zone.spreadDf ?? n - 1);
   });
   return (variance * variance) / sum;
 }

@@ -31,33 +31,55 @@ export function planForBudget(question: PlanQuestion, budget: Budget): BudgetAns
   if (!(budget.value > 0)) throw new AnalysisError('bad_budget', `The budget must be above 0; got ${budget.value}.`);
   const found = smallestScale(question, (plan) => spent(plan, budget.kind) <= budget.value * (1 + 1e-12));
   if (found === null) return { kind: 'tooSmall', least: spent(planCounts(scaleMargins(question, LARGEST)), budget.kind) };
-  return { kind: 'plan', ...found, everyVine: found.scale <= SMALLEST };
+  return { kind: 'plan', ...found };
 }
 
 /** Margins tighter than this ask for every vine. */
 const SMALLEST = 4 ** -10;
 const LARGEST = 1e6;
+/** Two factors this near are one. */
+const NEAR = 1 + 1e-5;
 
-/** Smallest factor on all margins whose plan fits, to 1e-5; null when even the minimum does not. Counts only fall as margins widen. */
-export function smallestScale(question: PlanQuestion, fits: (plan: PlanCounts) => boolean): { readonly scale: number; readonly plan: PlanCounts } | null {
+export interface ScaledPlan {
+  readonly scale: number;
+  readonly plan: PlanCounts;
+  /** True when the plan holds every eligible vine: tighter margins would not be kept. */
+  readonly everyVine: boolean;
+}
+
+/**
+ * Smallest factor on all margins whose plan fits, to 1e-5; null when even the minimum does not. Counts only fall as
+ * margins widen. Where every vine fits, the widest margins that still ask for all of them, so that no margin is promised
+ * that nobody asked for; margins stay as they are where they ask for every vine already.
+ */
+export function smallestScale(question: PlanQuestion, fits: (plan: PlanCounts) => boolean): ScaledPlan | null {
   const planAt = (scale: number) => planCounts(scaleMargins(question, scale));
+  const all = planAt(SMALLEST);
+  const isAll = (plan: PlanCounts) => plan.visits === all.visits && plan.measures.every(({ samples }, j) => samples === all.measures[j]!.samples);
+  if (fits(all)) {
+    const wanted = planAt(1);
+    if (isAll(wanted)) return { scale: 1, plan: wanted, everyVine: true };
+    const { low } = narrowed(SMALLEST, 1, (scale) => !isAll(planAt(scale)));
+    return { scale: low, plan: planAt(low), everyVine: true };
+  }
   let high = 1;
   while (!fits(planAt(high))) {
     high *= 4;
     if (high > LARGEST) return null;
   }
-  let low = high / 4;
-  while (low < 1 && fits(planAt(low))) {
-    high = low;
-    if (high <= SMALLEST) return { scale: high, plan: planAt(high) };
-    low = high / 4;
-  }
-  while (high / low > 1 + 1e-5) {
+  const { high: scale } = narrowed(SMALLEST, high, (at) => fits(planAt(at)));
+  return { scale, plan: planAt(scale), everyVine: false };
+}
+
+/** The place between a factor that does not hold and one that does. */
+function narrowed(from: number, to: number, holds: (scale: number) => boolean): { readonly low: number; readonly high: number } {
+  let [low, high] = [from, to];
+  while (high / low > NEAR) {
     const middle = Math.sqrt(high * low);
-    if (fits(planAt(middle))) high = middle;
+    if (holds(middle)) high = middle;
     else low = middle;
   }
-  return { scale: high, plan: planAt(high) };
+  return { low, high };
 }
 
 export function scaleMargins(question: PlanQuestion, scale: number): PlanQuestion {

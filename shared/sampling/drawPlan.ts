@@ -1,6 +1,7 @@
 import type { XY } from '../geo/coordinates.ts';
 import type { BlockRows } from '../geo/rows.ts';
 import type { VineTable } from '../geo/vines.ts';
+import type { EligibleRule } from './eligible.ts';
 import { drawTargets, type ZoneDraw } from './targets.ts';
 import { walkBlock } from './walkBlock.ts';
 import { walkTime, type PacedGround } from './walkTime.ts';
@@ -12,7 +13,9 @@ export interface PlanDrawRequest {
   readonly zoneOfVine: ArrayLike<number>;
   /** Not 0 for vines that never are targets. */
   readonly unusable: ArrayLike<number>;
-  readonly nearBorder: ArrayLike<number>;
+  /** Leave out to draw up to the borders of zones. */
+  readonly nearBorder?: ArrayLike<number>;
+  readonly rule?: Partial<EligibleRule>;
   readonly gateXY: XY;
   /** Vines of each zone, and samples of each measure there. */
   readonly wanted: readonly { readonly zone: number; readonly visits: number; readonly counts: readonly number[] }[];
@@ -43,8 +46,8 @@ export interface PlanDraw {
 
 /** Target vines of a plan in walking order, and what the walk from the gate and back takes. */
 export function drawPlan(request: PlanDrawRequest): PlanDraw {
-  const { rows, table, zoneOfVine, unusable, nearBorder, gateXY, wanted, measures, seed } = request;
-  const zones = drawTargets({ table, zoneOfVine, unusable, nearBorder, seed, wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
+  const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, seed } = request;
+  const zones = drawTargets({ table, zoneOfVine, unusable, seed, ...(nearBorder ? { nearBorder } : {}), ...(rule ? { rule } : {}), wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
   const drawn = zones.flatMap((draw, i) =>
     draw.targets.map((target) => ({ ...target, zone: draw.zone, measures: measures.filter((_, j) => target.drawOrder <= wanted[i]!.counts[j]!).map(({ code }) => code) })));
   if (drawn.length === 0) return { zones, targets: [], lengthM: 0, walkingS: 0, serviceS: 0, isGroundAssumedOpen: false };

@@ -1,5 +1,5 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
-import type { Handful } from '../contracts/plans.ts';
+import type { Handful } from '../contracts/planChoices.ts';
 import { criticalZ } from './quantiles.ts';
 import { bestSplit, stageVariance, type StageSplit } from './twoStage.ts';
 
@@ -20,6 +20,11 @@ export function betweenVines(spread: number, handful: Handful): number {
 /** Spread of a vine's value with the chosen clusters and berries. Example: 1.25 with 1 cluster, S_w 0.707 → 1.146 with 2. */
 export function handfulSpread(spread: number, handful: Handful): number {
   return Math.sqrt(betweenVines(spread, handful) + withinPart(handful, handful));
+}
+
+/** Share of the variance of a vine's value that lies between vines, where `spread` is the one with the chosen clusters and berries. */
+export function betweenShare(spread: number, handful: Handful): number {
+  return Math.max(0, 1 - withinPart(handful, handful) / spread ** 2);
 }
 
 /** Seconds at the vine for the chosen clusters and berries. */

@@ -1,8 +1,7 @@
 import { smallestScale } from './budget.ts';
 import type { Division } from './divideZone.ts';
 import type { Margin } from './margins.ts';
-import { mergedFigures } from './mergedZones.ts';
-import { planCounts, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
+import { planCounts, type PlanCounts, type PlanQuestion } from './planCounts.ts';
 
 /**
  * When a plan asks for more than a day's work or more vines than a zone should take, what would help, in figures.
@@ -43,6 +42,8 @@ export interface AdviceQuestion {
   readonly limits?: PracticalLimits;
   /** Confidence levels to fall back on, any order. */
   readonly confidences: readonly number[];
+  /** The question with two zones sampled as one; pooling is not looked into when left out. */
+  readonly pooled?: (one: string, other: string) => PlanQuestion;
   /** Best division of zones for which one could be sought (`bestDivision`, on the zone's driving measure). */
   readonly divisions?: readonly { readonly zone: string; readonly division: Division; readonly layerName?: string }[];
 }
@@ -54,7 +55,7 @@ export function adviseImpractical(ask: AdviceQuestion): ImpracticalAdvice | null
   const hoursOver = limits.hours !== null && plan.hours > limits.hours;
   if (zonesOver.length === 0 && !hoursOver) return null;
   const judge = (other: PlanCounts): Outcome => ({ visits: other.visits, hours: other.hours, saving: 1 - other.visits / plan.visits, fits: isPractical(other, limits) });
-  const options = [widerMargin(question, limits, judge), lowerConfidence(ask, judge), poolZones(question, zonesOver, judge), ...divided(ask, zonesOver)];
+  const options = [widerMargin(question, limits, judge), lowerConfidence(ask, judge), poolZones(ask, zonesOver, judge), ...divided(ask, zonesOver)];
   return { zonesOver, hoursOver, options: options.filter((option) => option !== null) };
 }
 
@@ -85,37 +86,16 @@ function lowerConfidence({ question, confidences }: AdviceQuestion, judge: Judge
 }
 
 /** The pair with a zone over its limit whose union needs the fewest vines. */
-function poolZones(question: PlanQuestion, zonesOver: readonly string[], judge: Judge): ImpracticalOption | null {
+function poolZones({ question, pooled }: AdviceQuestion, zonesOver: readonly string[], judge: Judge): ImpracticalOption | null {
   let best: ImpracticalOption | null = null;
   question.zones.forEach((first, i) => {
-    question.zones.slice(i + 1).forEach((second, offset) => {
-      if (zonesOver.length > 0 && !zonesOver.includes(first.zone) && !zonesOver.includes(second.zone)) return;
-      const outcome = judge(planCounts(mergeZones(question, i, i + 1 + offset)));
+    question.zones.slice(i + 1).forEach((second) => {
+      if (!pooled || (zonesOver.length > 0 && !zonesOver.includes(first.zone) && !zonesOver.includes(second.zone))) return;
+      const outcome = judge(planCounts(pooled(first.zone, second.zone)));
       if (best === null || outcome.visits < best.visits) best = { kind: 'poolZones', zones: [first.zone, second.zone], ...outcome };
     });
   });
   return best;
-}
-
-/** The question with two zones taken as one, their spread widened by the difference of their means. */
-export function mergeZones(question: PlanQuestion, i: number, j: number): PlanQuestion {
-  const [first, second] = [question.zones[i]!, question.zones[j]!];
-  const others = <T>(items: readonly T[]) => items.filter((_, at) => at !== i && at !== j);
-  const merged = { zone: `${first.zone} + ${second.zone}`, vines: first.vines + second.vines, eligibleVines: (first.eligibleVines ?? first.vines) + (second.eligibleVines ?? second.vines) };
-  const measures = question.measures.map((measure) => mergeMeasure(measure, { pair: [i, j], vines: [first.vines, second.vines], others }));
-  return { ...question, zones: [...others(question.zones), merged], measures };
-}
-
-interface ZonePair {
-  readonly pair: readonly [number, number];
-  readonly vines: readonly [number, number];
-  /** Items of the zones outside the pair. */
-  readonly others: <T>(items: readonly T[]) => T[];
-}
-
-function mergeMeasure(measure: PlanMeasure, { pair, vines, others }: ZonePair): PlanMeasure {
-  const { spread, mean } = mergedFigures(pair.map((at, side) => ({ vines: vines[side]!, spread: measure.spreads[at]!, mean: measure.expectedMeans[at]! })));
-  return { ...measure, spreads: [...others(measure.spreads), spread], expectedMeans: [...others(measure.expectedMeans), mean], ...(measure.pilots ? { pilots: [...others(measure.pilots), null] } : {}) };
 }
 
 function divided({ plan, divisions = [], limits = DEFAULT_LIMITS }: AdviceQuestion, zonesOver: readonly string[]): ImpracticalOption[] {

@@ -1,9 +1,10 @@
-import { allocationVariance, totalVines } from './allocate.ts';
+import { totalVines } from './allocate.ts';
 import { blockPrecision } from './blockSampleSize.ts';
 import { matchMargin } from './margins.ts';
-import type { PlanCounts, PlanQuestion } from './planCounts.ts';
+import { blockDemand, type PlanCounts, type PlanQuestion } from './planCounts.ts';
 import { criticalT } from './quantiles.ts';
-import { sampleSizeSteps, steinSampleSize } from './sampleSize.ts';
+import { halfWidth as halfWidthOf, sampleSizeSteps, steinSampleSize } from './sampleSize.ts';
+import { spreadOf } from './severalMeasures.ts';
 
 /** The numbers of a plan's formulas, one measure at a time, for whoever wants to check them by hand. */
 export interface ZoneMaths {
@@ -23,31 +24,37 @@ export interface ZoneMaths {
   readonly normal: number;
   readonly normalInPopulation: number;
   readonly limitedBy: 'margin' | 'minimum' | 'population';
-  /** Where a pilot decides: its vines, and (t·s₁/E)² before rounding. */
-  readonly pilot: { readonly n: number; readonly unrounded: number } | null;
+  /** Share of the variance that reading every vine would take away. */
+  readonly finiteShare: number;
+  /** Where a pilot decides: its vines, and (t·s₁/E)² before rounding, without end and among the vines there are. */
+  readonly pilot: { readonly n: number; readonly unrounded: number; readonly inPopulation: number } | null;
 }
 
 export interface BlockMaths {
-  readonly zones: readonly { readonly zone: string; readonly weight: number; readonly spread: number; readonly n: number; readonly vines: number }[];
+  readonly zones: readonly { readonly zone: string; readonly weight: number; readonly spread: number; readonly n: number; readonly vines: number; readonly finiteShare: number }[];
   readonly variance: number;
   readonly df: number;
   readonly t: number;
   readonly halfWidth: number;
 }
 
-/** Per zone: the smallest n with t·s/√n·√(1 − n/N) ≤ E, and every number in it. */
+/** Per zone: the smallest n with t·s/√n·√(1 − f·n/N) ≤ E, and every number in it. */
 export function zoneMaths(question: PlanQuestion, code: string): ZoneMaths[] {
   const measure = question.measures.find((one) => one.code === code)!;
   return question.zones.map(({ zone, vines }, i) => {
     const { spread, margin } = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
-    const steps = sampleSizeSteps({ spread, margin, confidence: measure.confidence, populationSize: vines, ...(question.minimum === undefined ? {} : { minimum: question.minimum }) });
+    const finiteShare = measure.finiteShares?.[i] ?? 1;
+    const steps = sampleSizeSteps({ spread, margin, confidence: measure.confidence, populationSize: vines, finiteShare, ...(question.minimum === undefined ? {} : { minimum: question.minimum }) });
     const { n, df, t, halfWidth, halfWidthOneFewer, normal, normalInPopulation, limitedBy } = steps;
-    const facts = { zone, vines, spread, margin, normal, normalInPopulation };
+    const facts = { zone, vines, spread, margin, finiteShare, normal, normalInPopulation };
     const pilot = measure.pilots?.[i];
     if (!pilot) return { ...facts, n, df, t, halfWidth, oneFewer: halfWidthOneFewer, limitedBy, pilot: null };
-    const two = steinSampleSize({ pilotN: pilot.n, pilotDf: pilot.df, pilotSpread: spread, margin, confidence: measure.confidence, populationSize: vines });
-    const fixedT = criticalT(measure.confidence, pilot.df);
-    return { ...facts, n: two.total, df: pilot.df, t: fixedT, halfWidth: (fixedT * spread) / Math.sqrt(two.total), oneFewer: Number.NaN, limitedBy: 'margin', pilot: { n: pilot.n, unrounded: two.unrounded } };
+    const two = steinSampleSize({ pilotN: pilot.n, pilotDf: pilot.df, pilotSpread: spread, margin, confidence: measure.confidence, populationSize: vines, finiteShare });
+    return {
+      ...facts, n: two.total, df: pilot.df, t: criticalT(measure.confidence, pilot.df), oneFewer: Number.NaN, limitedBy: 'margin',
+      halfWidth: halfWidthOf({ spread, n: two.total, confidence: measure.confidence, populationSize: vines, finiteShare, df: pilot.df }),
+      pilot: { n: pilot.n, unrounded: two.unrounded, inPopulation: two.inPopulation },
+    };
   });
 }
 
@@ -57,13 +64,13 @@ export function blockMaths(question: PlanQuestion, counts: PlanCounts, code: str
   const measure = question.measures[at]!;
   const isShare = measure.spreads.every(({ kind }) => kind === 'cv') && measure.margin.kind === 'relative';
   if (!isShare && measure.expectedMeans.includes(null) && measure.spreads.some(({ kind }) => kind === 'cv')) return null;
-  const sds = measure.spreads.map((spread, i) => (isShare ? spread.value : matchMargin(spread, { kind: 'absolute', value: 1 }, measure.expectedMeans[i]!).spread));
-  const zones = question.zones.map(({ vines }, i) => ({ vines, sd: sds[i]! }));
+  const demand = blockDemand(question, measure);
+  const zones = question.zones.map(({ vines }, i) => ({ vines, ...spreadOf(demand, i) }));
   const taken = counts.zones.map((zone) => zone.counts[at]!);
   const { variance, df, halfWidth } = blockPrecision(zones, taken, { confidence: measure.confidence });
   const all = totalVines(zones);
   return {
-    zones: question.zones.map(({ zone, vines }, i) => ({ zone, weight: vines / all, spread: sds[i]!, n: taken[i]!, vines })),
-    variance: allocationVariance(zones, taken) || variance, df, t: criticalT(measure.confidence, df), halfWidth,
+    zones: question.zones.map(({ zone, vines }, i) => ({ zone, weight: vines / all, spread: zones[i]!.sd, n: taken[i]!, vines, finiteShare: zones[i]!.finiteShare ?? 1 })),
+    variance, df, t: criticalT(measure.confidence, df), halfWidth,
   };
 }

@@ -1,12 +1,14 @@
 import { confidences } from '../catalog/measures.ts';
-import type { BasisMeasure, PlanBasis, PlanChoices, ZoneDivision } from '../contracts/plans.ts';
+import type { BasisMeasure, PlanBasis } from '../contracts/planBasis.ts';
+import type { PlanChoices, PlannedMeasureChoice } from '../contracts/planChoices.ts';
+import type { ZoneDivision } from '../contracts/plans.ts';
 import { AnalysisError } from '../analysis/analysisError.ts';
 import { planForBudget, type Budget, type BudgetAnswer } from './budget.ts';
-import { handfulSeconds, handfulSpread } from './handful.ts';
+import { betweenShare, handfulSeconds, handfulSpread } from './handful.ts';
 import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
 import { pilotQuotas } from './pilot.ts';
 import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
-import { pooledBasis } from './pooledZones.ts';
+import { choicesJoined, pooledBasis } from './pooledZones.ts';
 import { marginLadder, tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
 
 /**
@@ -30,7 +32,8 @@ export function answerPlan(basis: PlanBasis, choices: PlanChoices, divisions: re
     return { question, counts: planOfVisits(question, quotas.map(({ n }) => n)), advice: null, limits };
   }
   const counts = planCounts(question);
-  return { question, counts, advice: adviseImpractical({ question, plan: counts, limits, confidences, divisions }), limits };
+  const pooled = (one: string, other: string) => questionOf(basis, choicesJoined(choices, Number(one), Number(other)));
+  return { question, counts, advice: adviseImpractical({ question, plan: counts, limits, confidences, pooled, divisions }), limits };
 }
 
 /** The same plan turned round: what the time, vines or money give. Margins keep the proportions that were chosen. */
@@ -62,7 +65,7 @@ export function questionOf(unpooled: PlanBasis, choices: PlanChoices): PlanQuest
   };
 }
 
-function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {
+function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot, population }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {
   const known = basis.measures.find(({ code }) => code === choice.code);
   if (!known) throw new AnalysisError('measure_missing', `There is no measure "${choice.code}" in use in this estate. Choose another or add it.`);
   const pilots = afterPilot && !isPilot ? basis.zones.map((_, i) => known.pilots[i] ?? null) : [];
@@ -78,8 +81,16 @@ function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot }: PlanCh
     expectedMeans: known.spreads.map(({ expectedMean }) => expectedMean),
     // A typed spread is not the pilot's, so its rule does not hold for it.
     pilots: pilots.map((pilot, i) => (choice.spreads?.[String(basis.zones[i]!.number)] === undefined ? pilot : null)),
+    ...finiteSharesOf(spreads, { population, handful: choice.handful }),
     secondsPerSample: choice.secondsPerSample ?? (choice.handful ? handfulSeconds(choice.handful) : known.secondsPerSample),
+    ...(choice.moneyPerSample === undefined ? {} : { moneyPerSample: choice.moneyPerSample }),
   };
+}
+
+/** What reading every vine would leave unknown: all of it where the mean shall speak for more than these vines, and what differs within vines where that is known. */
+function finiteSharesOf(spreads: PlanMeasure['spreads'], { population, handful }: Pick<PlanChoices, 'population'> & Pick<PlannedMeasureChoice, 'handful'>): Pick<PlanMeasure, 'finiteShares'> {
+  if (population === 'endless') return { finiteShares: spreads.map(() => 0) };
+  return handful ? { finiteShares: spreads.map(({ value }) => betweenShare(value, handful)) } : {};
 }
 
 function inHandful(spread: number, { handful }: PlanChoices['measures'][number]): number {

@@ -1,4 +1,5 @@
-import type { BasisSpread, SpreadChoices } from '../contracts/plans.ts';
+import type { BasisSpread } from '../contracts/planBasis.ts';
+import type { SpreadChoices } from '../contracts/planChoices.ts';
 import type { Spread } from './margins.ts';
 import { planSpread } from './planSpread.ts';
 import type { HistoryReading } from './pooling.ts';

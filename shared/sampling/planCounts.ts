@@ -2,9 +2,8 @@ import { AnalysisError } from '../analysis/analysisError.ts';
 import { allocationMethods, type AllocationMethodId } from './allocationMethods.ts';
 import { blockPrecision, blockSampleSize } from './blockSampleSize.ts';
 import { matchMargin, type Margin, type MatchedMargin, type Spread } from './margins.ts';
-import { criticalT } from './quantiles.ts';
 import { ADVISED_MINIMUM, halfWidth, steinSampleSize } from './sampleSize.ts';
-import { everyZoneCounts, leastCostForAll, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
+import { everyZoneCounts, leastCostForAll, spreadOf, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
 
 /**
  * Counts, hours and precision of a whole plan: several zones, several measures, one walk.
@@ -29,6 +28,8 @@ export interface PlanMeasure {
   readonly expectedMeans: readonly (number | null)[];
   /** What a pilot read in each zone, where the two-stage rule decides; null or left out where it does not. */
   readonly pilots?: readonly (PilotSpread | null)[];
+  /** Per zone, the share of the variance that reading every vine would take away (see `halfWidth`); 1 when left out. */
+  readonly finiteShares?: readonly number[];
   readonly secondsPerSample: number;
   readonly moneyPerSample?: number;
 }
@@ -38,6 +39,8 @@ export interface PilotSpread {
   readonly df: number;
   /** In the form of the measure's spreads. */
   readonly spread: number;
+  /** Mean of the readings, where it is known. */
+  readonly mean?: number | null;
 }
 
 export interface PlanEffort {
@@ -136,12 +139,13 @@ function draftEachZone(question: PlanQuestion): Draft {
     zones.map((zone, i) => {
       const matched = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
       const pilot = measure.pilots?.[i];
+      const finiteShares = [measure.finiteShares?.[i] ?? 1];
       if (pilot) {
-        const { total } = steinSampleSize({ pilotN: pilot.n, pilotDf: pilot.df, pilotSpread: matched.spread, margin: matched.margin, confidence: measure.confidence, populationSize: zone.vines });
+        const { total } = steinSampleSize({ pilotN: pilot.n, pilotDf: pilot.df, pilotSpread: matched.spread, margin: matched.margin, confidence: measure.confidence, populationSize: zone.vines, finiteShare: finiteShares[0] });
         const floor = Math.min(question.minimum ?? ADVISED_MINIMUM, zone.vines);
         return { n: Math.min(Math.max(total, floor), eligible(zone)), byFloor: total < floor };
       }
-      const demand: MeasureDemand = { code: measure.code, spreads: [matched.spread], margin: matched.margin, confidence: measure.confidence };
+      const demand: MeasureDemand = { code: measure.code, spreads: [matched.spread], margin: matched.margin, confidence: measure.confidence, finiteShares };
       const [answer] = everyZoneCounts([{ vines: zone.vines, minimum: question.minimum ?? ADVISED_MINIMUM }], [demand]);
       return { n: Math.min(answer!.n, eligible(zone)), byFloor: answer!.driver === null };
     }),
@@ -159,21 +163,33 @@ function heaviestFirst(measures: readonly PlanMeasure[], zoneDrivers: readonly (
 }
 
 /** Spreads and margin of a measure on one scale for all zones together. */
-function blockDemand(measure: PlanMeasure, zones: readonly PlanZone[]): MeasureDemand {
-  const { code, margin, confidence, spreads, expectedMeans } = measure;
+export function blockDemand(question: PlanQuestion, measure: PlanMeasure): MeasureDemand {
+  const { zones } = question;
+  const { code, margin, spreads, expectedMeans, confidence, finiteShares } = measure;
+  const rest = { code, confidence, ...(finiteShares ? { finiteShares } : {}), ...(measure.pilots ? { spreadDfs: spreadDfs(question, measure.pilots) } : {}) };
   const sharesOnly = margin.kind === 'relative' && spreads.every(({ kind }) => kind === 'cv') && expectedMeans.includes(null);
-  if (sharesOnly) return { code, spreads: spreads.map(({ value }) => value), margin: margin.value, confidence };
+  if (sharesOnly) return { ...rest, spreads: spreads.map(({ value }) => value), margin: margin.value };
   const absolute: Margin = { kind: 'absolute', value: 1 };
   const inUnits = spreads.map((spread, i) => matchMargin(spread, absolute, expectedMeans[i]!).spread);
-  if (margin.kind === 'absolute') return { code, spreads: inUnits, margin: margin.value, confidence };
+  if (margin.kind === 'absolute') return { ...rest, spreads: inUnits, margin: margin.value };
   const vines = zones.reduce((sum, zone) => sum + zone.vines, 0);
   const mean = expectedMeans.includes(null) ? null : zones.reduce((sum, zone, i) => sum + (zone.vines / vines) * expectedMeans[i]!, 0);
-  return { code, spreads: inUnits, margin: matchMargin({ kind: 'sd', value: 0 }, margin, mean).margin, confidence };
+  return { ...rest, spreads: inUnits, margin: matchMargin({ kind: 'sd', value: 0 }, margin, mean).margin };
+}
+
+/**
+ * Degrees of freedom of a pilot's spreads. One a zone is taken off where the spreads decide the shares too: a zone whose
+ * spread came out small by chance then also gets few vines. Own rule, set by simulation with pilots of five to ten vines
+ * in two zones: without it 95 % came to 94.1, with it to no less than 94.5 (tests/core/pilotRule.test.ts).
+ */
+function spreadDfs({ question, method = 'leastCost' }: PlanQuestion, pilots: NonNullable<PlanMeasure['pilots']>): (number | null)[] {
+  const lost = question === 'block' && method !== 'equal' && method !== 'area' ? 1 : 0;
+  return pilots.map((pilot) => (pilot === null ? null : Math.max(1, pilot.df - lost)));
 }
 
 function draftBlock(question: PlanQuestion): Draft {
   const { zones, measures, method = 'leastCost' } = question;
-  const demands = measures.map((measure) => blockDemand(measure, zones));
+  const demands = measures.map((measure) => blockDemand(question, measure));
   const shared = sharedZones(question, measures);
   // With one measure every sample costs the same, and the cheapest counts are those shared by spread.
   const byCounts = method === 'leastCost' && measures.length === 1 ? 'spread' : method;
@@ -183,7 +199,7 @@ function draftBlock(question: PlanQuestion): Draft {
     return { visits: answer.counts, counts: trimToVisited(shared, demands, answer.counts), zoneDrivers, drivers: answer.binding };
   }
   const answers = demands.map((demand) => {
-    const priced = shared.map((zone, i) => ({ ...zone, sd: demand.spreads[i]! }));
+    const priced = shared.map((zone, i) => ({ ...zone, ...spreadOf(demand, i) }));
     return blockSampleSize({ zones: priced, margin: demand.margin, confidence: demand.confidence, method: byCounts });
   });
   const counts = answers.map((answer) => answer.counts);
@@ -205,7 +221,7 @@ function measureUp(question: PlanQuestion, draft: Draft): PlanCounts {
   const hours = planned.reduce((sum, zone) => sum + zone.hours, 0);
   const inMeasure = measures.map((measure, j): PlannedMeasure => {
     const samples = draft.counts[j]!.reduce((sum, n) => sum + n, 0);
-    const blockHalfWidth = halfWidthOfBlock(measure, zones, draft.counts[j]!);
+    const blockHalfWidth = halfWidthOfBlock(question, measure, draft.counts[j]!);
     const widest = question.question === 'block' ? blockHalfWidth : Math.max(...planned.map((zone) => zone.halfWidths[j]!));
     return { code: measure.code, samples, blockHalfWidth, reached: widest <= measure.margin.value * (1 + 1e-9) };
   });
@@ -217,14 +233,14 @@ function zoneHalfWidth(measure: PlanMeasure, { zone, i, n }: { zone: PlanZone; i
   const matched: MatchedMargin = matchMargin(measure.spreads[i]!, measure.margin, measure.expectedMeans[i]!);
   const pilot = measure.pilots?.[i];
   // After a pilot the interval is made with the pilot's spread and its degrees of freedom: that is what keeps the coverage.
-  const width = pilot ? criticalT(measure.confidence, pilot.df) * (matched.spread / Math.sqrt(n)) : halfWidth({ spread: matched.spread, n, confidence: measure.confidence, populationSize: zone.vines });
+  const width = halfWidth({ spread: matched.spread, n, confidence: measure.confidence, populationSize: zone.vines, finiteShare: measure.finiteShares?.[i], ...(pilot ? { df: pilot.df } : {}) });
   // `matched.margin` may be in units while the margin is a share: back to the scale of the margin.
   return (width * measure.margin.value) / matched.margin;
 }
 
-function halfWidthOfBlock(measure: PlanMeasure, zones: readonly PlanZone[], counts: readonly number[]): number {
-  const demand = blockDemand(measure, zones);
-  const priced = zones.map((zone, i) => ({ vines: zone.vines, sd: demand.spreads[i]! }));
+function halfWidthOfBlock(question: PlanQuestion, measure: PlanMeasure, counts: readonly number[]): number {
+  const demand = blockDemand(question, measure);
+  const priced = question.zones.map((zone, i) => ({ vines: zone.vines, ...spreadOf(demand, i) }));
   return (blockPrecision(priced, counts, { confidence: measure.confidence }).halfWidth * measure.margin.value) / demand.margin;
 }
 

@@ -1,5 +1,6 @@
-import type { BasisMeasure, BasisSpread, BasisZone, PlanBasis } from '../contracts/plans.ts';
-import { mergedFigures } from './mergedZones.ts';
+import type { BasisMeasure, BasisSpread, BasisZone, PlanBasis } from '../contracts/planBasis.ts';
+import type { PlanChoices, PlannedMeasureChoice } from '../contracts/planChoices.ts';
+import { mergedFigures, mergedPilot } from './mergedZones.ts';
 
 /** Zone numbers that a plan samples as one, in lists of two or more. */
 export type Pools = readonly (readonly number[])[];
@@ -26,10 +27,29 @@ export function partPool(pools: Pools, zone: number): number[][] {
   return pools.filter((pool) => !pool.includes(zone)).map((pool) => [...pool]);
 }
 
+/** Choices with other pools: a spread typed for a zone is not that of its pool, nor the other way round. */
+function withPools(choices: PlanChoices, pools: number[][], touched: readonly number[]): PlanChoices {
+  const forget = (choice: PlannedMeasureChoice): PlannedMeasureChoice => {
+    const kept = Object.entries(choice.spreads ?? {}).filter(([zone]) => !touched.includes(Number(zone)));
+    return { ...choice, spreads: kept.length > 0 ? Object.fromEntries(kept) : undefined };
+  };
+  return { ...choices, pools, measures: choices.measures.map((choice) => (choice.spreads ? forget(choice) : choice)) };
+}
+
+/** The choices with two zones, or pools of zones, sampled as one. */
+export function choicesJoined(choices: PlanChoices, one: number, other: number): PlanChoices {
+  return withPools(choices, joinPools(choices.pools, one, other), [...membersOf(choices.pools, one), ...membersOf(choices.pools, other)]);
+}
+
+/** The choices with the zones of a pool on their own again. */
+export function choicesParted(choices: PlanChoices, zone: number): PlanChoices {
+  return withPools(choices, partPool(choices.pools, zone), membersOf(choices.pools, zone));
+}
+
 /**
  * What a plan stands on when some zones are sampled as one: each pool is a zone with the lowest number of its members,
- * all their vines, and the spread inside them and between their means. The zones themselves stay as they are. A pilot's
- * two-stage rule rests on its spread inside single zones, so it does not hold for a pool.
+ * all their vines, and the spread inside them and between their means; so is what a pilot read in them, which keeps its
+ * two-stage rule. The zones themselves stay as they are.
  * Numbers that are no zone of the basis are passed over.
  */
 export function pooledBasis(basis: PlanBasis, pools: Pools): PlanBasis {
@@ -51,7 +71,7 @@ function pooledMeasure(measure: BasisMeasure, zones: readonly BasisZone[], group
   return {
     ...measure,
     spreads: groups.map((group) => pooledSpread(group.map((index) => ({ vines: zones[index]!.vines, spread: measure.spreads[index]! })))),
-    pilots: groups.map((group) => (group.length === 1 ? (measure.pilots[group[0]!] ?? null) : null)),
+    pilots: groups.map((group) => (group.length === 1 ? (measure.pilots[group[0]!] ?? null) : mergedPilot(group.map((index) => ({ vines: zones[index]!.vines, pilot: measure.pilots[index] ?? null })), measure.spreads[group[0]!]!.kind))),
   };
 }
 

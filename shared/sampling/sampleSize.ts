@@ -19,6 +19,8 @@ export interface SampleSizeQuestion {
   readonly confidence: number;
   /** Vines in the zone; Infinity when the aim is more than this zone's mean. */
   readonly populationSize?: number;
+  /** Share of the variance that reading every vine would take away; 1 when left out. */
+  readonly finiteShare?: number;
   /** Floor wanted by the planner; never below 2. */
   readonly minimum?: number;
 }
@@ -51,29 +53,35 @@ export interface HalfWidthQuestion {
   readonly n: number;
   readonly confidence: number;
   readonly populationSize?: number;
+  readonly finiteShare?: number;
   /** Degrees of freedom behind the spread; n − 1 when it comes from these n readings. */
   readonly df?: number;
 }
 
-/** t·s/√n·√(1 − n/N): the inverse of the sample size. NaN for fewer than two readings, 0 when every vine is read. */
-export function halfWidth({ spread, n, confidence, populationSize = Infinity, df = n - 1 }: HalfWidthQuestion): number {
-  if (n >= populationSize) return 0;
+/**
+ * t·s/√n·√(1 − f·n/N): the inverse of the sample size. NaN for fewer than two readings, 0 when every vine is read.
+ * f is the finite share: what differs between the clusters of a vine stays unknown when every vine has been read (the
+ * two-stage variance of Cochran 1977, §10.3, with clusters taken as many).
+ */
+export function halfWidth({ spread, n, confidence, populationSize = Infinity, finiteShare = 1, df = n - 1 }: HalfWidthQuestion): number {
+  const left = 1 - finiteShare * Math.min(1, n / populationSize);
+  if (left <= 0) return 0;
   if (n < HARD_MINIMUM || df <= 0) return Number.NaN;
-  return criticalT(confidence, df) * (spread / Math.sqrt(n)) * Math.sqrt(1 - n / populationSize);
+  return criticalT(confidence, df) * (spread / Math.sqrt(n)) * Math.sqrt(left);
 }
 
 /** The smallest n ≥ 2 whose t half-width keeps the margin, raised to the floor, capped at the population. */
 export function sampleSize(question: SampleSizeQuestion): SampleSize {
-  const { spread, margin, confidence, populationSize = Infinity, minimum = HARD_MINIMUM } = question;
+  const { spread, margin, confidence, populationSize = Infinity, finiteShare = 1, minimum = HARD_MINIMUM } = question;
   checkSpread(spread);
   checkMargin(margin);
   checkConfidence(confidence);
   checkPopulation(populationSize);
-  const widthAt = (n: number) => halfWidth({ spread, n, confidence, populationSize });
+  const widthAt = (n: number) => halfWidth({ spread, n, confidence, populationSize, finiteShare });
   const floor = Math.max(HARD_MINIMUM, Math.ceil(minimum));
-  if (populationSize <= floor) return { n: populationSize, halfWidth: 0, limitedBy: 'population' };
+  if (populationSize <= floor) return { n: populationSize, halfWidth: widthAt(populationSize), limitedBy: 'population' };
   // t exceeds z, so the normal answer is a lower bound; the half-width falls with n, so the first n that fits is the smallest.
-  let n = Math.max(HARD_MINIMUM, Math.floor(correctForPopulation(normalSampleSize(question), populationSize)));
+  let n = Math.max(HARD_MINIMUM, Math.floor(correctForPopulation(normalSampleSize(question), populationSize / finiteShare)));
   while (n < populationSize && widthAt(n) > margin * (1 + 1e-12)) n += 1;
   n = Math.min(n, populationSize);
   if (n < floor) return { n: floor, halfWidth: widthAt(floor), limitedBy: 'minimum' };
@@ -100,16 +108,16 @@ export interface SampleSizeSteps extends SampleSize {
 /** The same answer with every number on the way, for the screen that shows the working. */
 export function sampleSizeSteps(question: SampleSizeQuestion): SampleSizeSteps {
   const answer = sampleSize(question);
-  const { spread, confidence, populationSize = Infinity } = question;
+  const { spread, confidence, populationSize = Infinity, finiteShare = 1 } = question;
   const normal = normalSampleSize(question);
   return {
     ...answer,
     z: criticalZ(confidence),
     normal,
-    normalInPopulation: correctForPopulation(normal, populationSize),
+    normalInPopulation: correctForPopulation(normal, populationSize / finiteShare),
     df: answer.n - 1,
     t: answer.n < HARD_MINIMUM ? Number.NaN : criticalT(confidence, answer.n - 1),
-    halfWidthOneFewer: halfWidth({ spread, n: answer.n - 1, confidence, populationSize }),
+    halfWidthOneFewer: halfWidth({ spread, n: answer.n - 1, confidence, populationSize, finiteShare }),
   };
 }
 
@@ -121,23 +129,28 @@ export interface PilotQuestion {
   readonly margin: number;
   readonly confidence: number;
   readonly populationSize?: number;
+  readonly finiteShare?: number;
 }
 
 export interface PilotAnswer {
   readonly unrounded: number;
+  /** The same among the vines there are. */
+  readonly inPopulation: number;
   readonly total: number;
   readonly more: number;
 }
 
 /**
  * Stein's two-stage rule: total = max(n₁, ⌈(t·s₁/E)²⌉) with t at the pilot's n₁ − 1, not iterated; the final
- * interval uses s₁ and the same t. Covers at the stated rate whatever the true spread is, for normal data.
+ * interval uses s₁ and the same t. Covers at the stated rate whatever the true spread is, for normal data. Among N vines
+ * the correction of Cochran 1977 §4.6 is put into the count and into the interval, so that they still agree.
  */
-export function steinSampleSize({ pilotN, pilotDf = pilotN - 1, pilotSpread, margin, confidence, populationSize = Infinity }: PilotQuestion): PilotAnswer {
+export function steinSampleSize({ pilotN, pilotDf = pilotN - 1, pilotSpread, margin, confidence, populationSize = Infinity, finiteShare = 1 }: PilotQuestion): PilotAnswer {
   checkSpread(pilotSpread);
   checkMargin(margin);
   checkConfidence(confidence);
   const unrounded = ((criticalT(confidence, pilotDf) * pilotSpread) / margin) ** 2;
-  const total = Math.min(populationSize, Math.max(pilotN, ceilGuarded(unrounded)));
-  return { unrounded, total, more: total - pilotN };
+  const inPopulation = correctForPopulation(unrounded, populationSize / finiteShare);
+  const total = Math.min(populationSize, Math.max(pilotN, ceilGuarded(inPopulation)));
+  return { unrounded, inPopulation, total, more: total - pilotN };
 }

@@ -1,4 +1,4 @@
-import { minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
+import { finiteTerm, minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
 import { blockSampleSize } from './blockSampleSize.ts';
 import { leastCostCounts, type LeastCostAnswer, type LeastCostProblem } from './leastCost.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
@@ -24,6 +24,10 @@ export interface MeasureDemand {
   readonly spreads: readonly number[];
   readonly margin: number;
   readonly confidence: number;
+  /** Per zone, see `AllocationZone`; 1 when left out. */
+  readonly finiteShares?: readonly number[];
+  /** Per zone, see `AllocationZone`. */
+  readonly spreadDfs?: readonly (number | null)[];
 }
 
 export interface ZoneDemand {
@@ -38,7 +42,7 @@ export interface ZoneDemand {
 export function everyZoneCounts(zones: readonly SharedZone[], measures: readonly MeasureDemand[], { finitePopulation = true } = {}): ZoneDemand[] {
   return zones.map((zone, i) => {
     const populationSize = finitePopulation ? zone.vines : Infinity;
-    const byMeasure = measures.map(({ spreads, margin, confidence }) => sampleSize({ spread: spreads[i]!, margin, confidence, populationSize, minimum: zone.minimum }));
+    const byMeasure = measures.map(({ spreads, margin, confidence, finiteShares }) => sampleSize({ spread: spreads[i]!, margin, confidence, populationSize, finiteShare: finiteShares?.[i], minimum: zone.minimum }));
     const n = Math.max(...byMeasure.map((answer) => answer.n));
     const largest = byMeasure.findIndex((answer) => answer.n === n);
     return { n, driver: byMeasure[largest]!.limitedBy === 'minimum' ? null : measures[largest]!.code, byMeasure };
@@ -71,11 +75,12 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
   let answer = solve(zones, measures, targets);
   // The t factor depends on the counts that it decides; a few rounds settle it, always on the safe side.
   for (let round = 0; factor === 't' && round < 12; round++) {
-    const strict = measures.map(({ spreads, margin, confidence }, j) => {
-      const df = degreesOfFreedom(zones, spreads, answer.counts);
+    const strict = measures.map((measure, j) => {
+      const { margin, confidence } = measure;
+      const df = degreesOfFreedom(zones, measure, answer.counts);
       return Math.min(targets[j]!, targetVariance(margin, criticalT(confidence, df)));
     });
-    if (strict.every((target, j) => varianceOf(zones, measures[j]!.spreads, answer.counts) <= target * (1 + 1e-12))) break;
+    if (strict.every((target, j) => varianceOf(zones, measures[j]!, answer.counts) <= target * (1 + 1e-12))) break;
     targets = strict;
     answer = solve(zones, measures, targets);
   }
@@ -84,7 +89,7 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
   return {
     counts: answer.counts,
     cost: answer.cost,
-    ratios: measures.map(({ spreads }, j) => varianceOf(zones, spreads, answer.counts) / targets[j]!),
+    ratios: measures.map((measure, j) => varianceOf(zones, measure, answer.counts) / targets[j]!),
     binding: overMinimum ? order.filter(({ weight }) => weight >= DECIDES).map(({ code }) => code) : [],
     relaxed: answer.relaxed,
     lowerBound: answer.lowerBound,
@@ -101,24 +106,28 @@ function solve(zones: readonly SharedZone[], measures: readonly MeasureDemand[],
     minimum: zones.map((zone) => minimumOf({ ...zone, sd: 0 })),
     maximum: zones.map((zone) => maximumOf({ ...zone, sd: 0 })),
     terms,
-    limits: targets.map((target, j) => target + terms[j]!.reduce((sum, term, i) => sum + term / zones[i]!.vines, 0)),
+    limits: targets.map((target, j) => target + terms[j]!.reduce((sum, term, i) => sum + term * termOf(zones[i]!, measures[j]!, i), 0)),
   };
   return leastCostCounts(problem);
 }
 
-function varianceParts(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number[] {
+function termOf({ vines }: SharedZone, { finiteShares }: MeasureDemand, i: number): number {
+  return finiteTerm({ vines, finiteShare: finiteShares?.[i] });
+}
+
+function varianceParts(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number[] {
   const all = totalVines(zones);
-  return zones.map((zone, i) => ((zone.vines / all) * spreads[i]!) ** 2 * Math.max(0, 1 / counts[i]! - 1 / zone.vines));
+  return zones.map((zone, i) => ((zone.vines / all) * measure.spreads[i]!) ** 2 * Math.max(0, 1 / counts[i]! - termOf(zone, measure, i)));
 }
 
-function varianceOf(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number {
-  return varianceParts(zones, spreads, counts).reduce((sum, part) => sum + part, 0);
+function varianceOf(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number {
+  return varianceParts(zones, measure, counts).reduce((sum, part) => sum + part, 0);
 }
 
-function degreesOfFreedom(zones: readonly SharedZone[], spreads: readonly number[], counts: readonly number[]): number {
-  const parts = varianceParts(zones, spreads, counts);
+function degreesOfFreedom(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number {
+  const parts = varianceParts(zones, measure, counts);
   const variance = parts.reduce((sum, part) => sum + part, 0);
-  const below = parts.reduce((sum, part, i) => (part === 0 ? sum : sum + (part * part) / (counts[i]! - 1)), 0);
+  const below = parts.reduce((sum, part, i) => (part === 0 ? sum : sum + (part * part) / (measure.spreadDfs?.[i] ?? counts[i]! - 1)), 0);
   return below === 0 ? Infinity : (variance * variance) / below;
 }
 
@@ -127,9 +136,14 @@ function degreesOfFreedom(zones: readonly SharedZone[], spreads: readonly number
  * margin for the mean over zones, never more than the vines visited.
  */
 export function trimToVisited(zones: readonly SharedZone[], measures: readonly MeasureDemand[], visited: readonly number[]): number[][] {
-  return measures.map(({ spreads, margin, confidence }) => {
+  return measures.map((measure) => {
     // One measure, one cost: sharing by spread is the cheapest.
-    const limited = zones.map((zone, i) => ({ vines: zone.vines, minimum: zone.minimum, maximum: visited[i]!, sd: spreads[i]! }));
-    return [...blockSampleSize({ zones: limited, margin, confidence, method: 'spread' }).counts];
+    const limited = zones.map(({ vines, minimum }, i) => ({ vines, minimum, maximum: visited[i]!, ...spreadOf(measure, i) }));
+    return [...blockSampleSize({ zones: limited, margin: measure.margin, confidence: measure.confidence, method: 'spread' }).counts];
   });
+}
+
+/** What allocation needs to know of a measure in a zone. */
+export function spreadOf({ spreads, finiteShares, spreadDfs }: MeasureDemand, i: number): { sd: number; finiteShare: number | undefined; spreadDf: number | null } {
+  return { sd: spreads[i]!, finiteShare: finiteShares?.[i], spreadDf: spreadDfs?.[i] ?? null };
 }

@@ -38,7 +38,7 @@ export interface PacedGround {
   readonly pace?: readonly SlopeClass[];
 }
 
-/** Elevation is read this often along a way, so that a dip between two vines counts. */
+/** Elevation is read this often along a way, so that a dip between two vines counts, and never over less, so that its noise does not. */
 const READ_EVERY_M = 10;
 
 /** Seconds along a straight way of `lengthM`, the same in both directions. */
@@ -46,13 +46,17 @@ export function secondsAlong(way: { readonly fromXY: XY; readonly toXY: XY; read
   if (elevationM === undefined || way.lengthM === 0) return way.lengthM / speedOnSlope(0, pace);
   const parts = Math.max(1, Math.ceil(way.lengthM / READ_EVERY_M));
   const partM = way.lengthM / parts;
-  const heightAt = (i: number): number => elevationM([
-    way.fromXY[0] + ((way.toXY[0] - way.fromXY[0]) * i) / parts,
-    way.fromXY[1] + ((way.toXY[1] - way.fromXY[1]) * i) / parts,
+  const heightAt = (alongM: number): number => elevationM([
+    way.fromXY[0] + ((way.toXY[0] - way.fromXY[0]) * alongM) / way.lengthM,
+    way.fromXY[1] + ((way.toXY[1] - way.fromXY[1]) * alongM) / way.lengthM,
   ]);
+  const slopeBetween = (fromM: number, toM: number): number => (100 * (heightAt(toM) - heightAt(fromM))) / (toM - fromM);
+  const beyondM = (READ_EVERY_M - partM) / 2;
   let seconds = 0;
   for (let i = 0; i < parts; i++) {
-    const slopePercent = (100 * (heightAt(i + 1) - heightAt(i))) / partM;
+    const [fromM, toM] = [i * partM, (i + 1) * partM];
+    const wide = beyondM > 0 ? slopeBetween(fromM - beyondM, toM + beyondM) : Number.NaN;
+    const slopePercent = Number.isNaN(wide) ? slopeBetween(fromM, toM) : wide;
     seconds += partM / speedOnSlope(Number.isNaN(slopePercent) ? 0 : slopePercent, pace);
   }
   return seconds;

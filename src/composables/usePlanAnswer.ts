@@ -1,6 +1,8 @@
 import { computed, type ComputedRef, type Ref } from 'vue';
 import { AnalysisError } from '../../shared/analysis/analysisError.ts';
-import type { PlanBasis, PlanChoices, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import type { PlanChoices } from '../../shared/contracts/planChoices.ts';
+import type { ZoneDivision } from '../../shared/contracts/plans.ts';
 import { answerBudget, answerPlan, answerTradeOff, type PlanAnswer } from '../../shared/sampling/plan.ts';
 import type { Budget, BudgetAnswer } from '../../shared/sampling/budget.ts';
 import type { TradeOffCurve } from '../../shared/sampling/tradeOff.ts';

@@ -1,6 +1,7 @@
 import type { Ref } from 'vue';
-import type { PlanBasis, PlanChoices, PlannedMeasureChoice } from '../../shared/contracts/plans.ts';
-import { joinPools, membersOf, partPool } from '../../shared/sampling/pooledZones.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import type { PlanChoices, PlannedMeasureChoice } from '../../shared/contracts/planChoices.ts';
+import { choicesJoined, choicesParted } from '../../shared/sampling/pooledZones.ts';
 import type { ImpracticalOption } from '../../shared/sampling/impractical.ts';
 
 export interface PlanEdits {
@@ -36,16 +37,8 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     adjust(code, { spreads: Object.keys(typed).length > 0 ? typed : undefined });
   }
   const scaleMargins = (factor: number) => measures((choice) => ({ ...choice, margin: marginOf(choice) * factor }));
-  /** A spread typed for a zone is not that of its pool, nor the other way round. */
-  function pools(list: number[][], touched: readonly number[]): void {
-    const forget = (choice: PlannedMeasureChoice): PlannedMeasureChoice => {
-      const kept = Object.entries(choice.spreads ?? {}).filter(([zone]) => !touched.includes(Number(zone)));
-      return { ...choice, spreads: kept.length > 0 ? Object.fromEntries(kept) : undefined };
-    };
-    set({ pools: list, measures: choices.value.measures.map((choice) => (choice.spreads ? forget(choice) : choice)) });
-  }
-  const pool = (one: number, other: number) => pools(joinPools(choices.value.pools, one, other), [...membersOf(choices.value.pools, one), ...membersOf(choices.value.pools, other)]);
-  const part = (zone: number) => pools(partPool(choices.value.pools, zone), membersOf(choices.value.pools, zone));
+  const pool = (one: number, other: number) => (choices.value = choicesJoined(choices.value, one, other));
+  const part = (zone: number) => (choices.value = choicesParted(choices.value, zone));
   function takeAdvice(option: ImpracticalOption): void {
     if (option.kind === 'widerMargin') scaleMargins(option.scale);
     if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));

@@ -2,10 +2,20 @@ import { defineStore } from 'pinia';
 import type { z } from 'zod';
 import type { MeasureChange, MeasureView, newMeasure } from '../../shared/contracts/measures.ts';
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
-import type { DayWalk, NewPlan, PlanBasis, PlanChange, PlanChoices, PlanList, PlanStanding, PlanView, PlanWalk, SpreadChoices, ZoneDivision } from '../../shared/contracts/plans.ts';
-import type { FieldRound, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import type { BasisChoices, NewPlan, PlanChange, PlanChoices } from '../../shared/contracts/planChoices.ts';
+import type { PlanList, PlanStanding, PlanView, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { DayWalk, PlanWalk } from '../../shared/contracts/planWalks.ts';
+import type { FieldRound, newDay, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PersonView } from '../../shared/contracts/people.ts';
 import { http } from '../lib/http.ts';
+
+/** Plans of a day, in the order given or in the quickest. */
+export interface DayAsked {
+  plans: string[];
+  kmPerHour: number;
+  keepOrder: boolean;
+}
 
 interface Listed<Item> {
   items: Item[];
@@ -16,7 +26,7 @@ export const useSamplingStore = defineStore('sampling', () => {
   const base = (estateId: string) => `/api/estates/${estateId}`;
 
   const plans = (estateId: string) => http.get<PlanList>(`${base(estateId)}/plans`);
-  const basis = (estateId: string, zoningId: string, how?: SpreadChoices) => http.get<PlanBasis>(`${base(estateId)}/zonings/${zoningId}/plan-basis`, how ? { query: how } : {});
+  const basis = (estateId: string, zoningId: string, how?: BasisChoices) => http.get<PlanBasis>(`${base(estateId)}/zonings/${zoningId}/plan-basis`, how ? { query: { ...how.spread, edgeRows: how.draw.edgeRows, endVines: how.draw.endVines, borderM: how.draw.borderM ?? undefined } } : {});
   const plan = (estateId: string, planId: string) => http.get<PlanView>(`${base(estateId)}/plans/${planId}`);
   const make = (estateId: string, zoningId: string, made: NewPlan) => http.post<PlanView>(`${base(estateId)}/zonings/${zoningId}/plans`, made);
   const change = (estateId: string, planId: string, changed: PlanChange) => http.patch<PlanView>(`${base(estateId)}/plans/${planId}`, changed);
@@ -26,7 +36,9 @@ export const useSamplingStore = defineStore('sampling', () => {
 
   const divisions = (estateId: string, zoningId: string, choices: PlanChoices) => http.post<Listed<ZoneDivision>>(`${base(estateId)}/zonings/${zoningId}/divisions`, { choices });
   const walk = (estateId: string, planId: string, asked: { people: number; end: 'gate' | 'anywhere'; gate: string | null }) => http.get<PlanWalk>(`${base(estateId)}/plans/${planId}/walk`, { query: asked });
-  const day = (estateId: string, asked: { plans: string[]; kmPerHour: number }) => http.post<DayWalk>(`${base(estateId)}/plans/day`, asked);
+  const day = (estateId: string, asked: DayAsked) => http.post<DayWalk>(`${base(estateId)}/plans/day`, asked);
+  const sendDay = async (estateId: string, sent: z.input<typeof newDay>) => (await http.post<Listed<{ id: string }>>(`${base(estateId)}/plans/day/rounds`, sent)).items;
+  const daySheet = (estateId: string, onDate: string, paper: 'a4' | 'letter') => http.download(`${base(estateId)}/rounds/day-sheet`, 'day.pdf', { query: { onDate, paper } });
   const standing = async (estateId: string, planId: string) => (await http.get<Listed<PlanStanding>>(`${base(estateId)}/plans/${planId}/standing`)).items;
 
   const rounds = async (estateId: string, planId?: string) => (await http.get<Listed<RoundSummary>>(`${base(estateId)}/rounds`, { query: { plan: planId } })).items;
@@ -46,5 +58,5 @@ export const useSamplingStore = defineStore('sampling', () => {
   const rows = (estateId: string, blockId: string) => http.get<BlockRowsView>(`${base(estateId)}/blocks/${blockId}/rows`);
   const people = async (estateId: string) => (await http.get<Listed<PersonView>>(`${base(estateId)}/people`)).items;
 
-  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, endRound, sheet, labels, blankLabels, divisions, walk, day, standing, measures, addMeasure, changeMeasure, rows, people };
+  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, endRound, sheet, labels, blankLabels, divisions, walk, day, sendDay, daySheet, standing, measures, addMeasure, changeMeasure, rows, people };
 });

@@ -3,7 +3,7 @@ import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
 import type { EarlierFileView } from '../../shared/contracts/earlier.ts';
-import type { PlanBasis } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import type { ResultsView } from '../../shared/contracts/results.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';

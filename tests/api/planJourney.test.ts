@@ -1,9 +1,12 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { encodeCells } from '../../shared/analysis/cellBytes.ts';
-import { planChoices, type DayWalk, type PlanBasis, type PlanStanding, type PlanView, type PlanWalk, type ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../shared/contracts/planChoices.ts';
+import type { PlanStanding, PlanView, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { DayWalk, PlanWalk } from '../../shared/contracts/planWalks.ts';
 import type { ResultsView } from '../../shared/contracts/results.ts';
-import type { FieldRound } from '../../shared/contracts/rounds.ts';
+import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { gridOf, loadBlockVines } from '../../server/ground/blockVines.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
@@ -13,6 +16,7 @@ import { Season } from '../../server/models/Season.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+import { readPdf } from '../core/pdfText.ts';
 
 let app: TestApp;
 let estate: Awaited<ReturnType<TestApp['addEstate']>>;
@@ -66,11 +70,11 @@ describe('a pilot', () => {
     expect(first).toMatchObject({ n: 10, df: 9 });
     expect(first!.spread).toBeCloseTo(0.14005, 4);
     expect(second).toBeNull();
-    // Stein 1945: (2.262157 · 0.14005 / 0.1)² = 10.04 → 11.
+    // Stein 1945: (2.262157 · 0.14005 / 0.1)² = 10.04, of 1328 vines 9.96 → 10 (Cochran 1977 §4.6).
     const answer = answerPlan(after, planChoices.parse({ measures: [clusters], afterPilot: true }));
-    expect(answer.counts.zones[0]!.visits).toBe(11);
+    expect(answer.counts.zones[0]!.visits).toBe(10);
     const made = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'After', measures: [clusters], afterPilot: true })).body as PlanView;
-    expect(made.draw[0]!.drawn).toBe(11);
+    expect(made.draw[0]!.drawn).toBe(10);
   });
 });
 
@@ -182,6 +186,65 @@ describe('a day over several blocks', () => {
     expect(day.totalS).toBeCloseTo(onTheWay + day.blocks.reduce((sum, { seconds }) => sum + seconds, 0), 6);
     expect((await manager.post(`${base}/plans/day`, { plans: [made[0]!.id] })).status).toBe(422);
     expect((await manager.post(`${base}/plans/day`, { plans: [made[0]!.id, randomUUID()] })).status).toBe(404);
+  });
+});
+
+describe('a day that is sent as one', () => {
+  it('carries the order to everybody who walks: list, phone, sheet and page of the day; all rounds or none', async () => {
+    const [one, other] = [await makeStripBlock(estate, { name: 'First', x: 3000 }), await makeStripBlock(estate, { name: 'Second', x: 3300 })];
+    const made: PlanView[] = [];
+    for (const zoningId of [one.zoningId, other.zoningId]) made.push((await manager.post(`${base}/zonings/${zoningId}/plans`, { name: 'Day', measures: [clusters], seed: 4 })).body as PlanView);
+    const ask = { plans: [made[1]!.id, made[0]!.id], keepOrder: true, onDate: '2026-07-10', people: [crew.id] };
+    await manager.post(`${base}/plans/${made[1]!.id}/lock`);
+    const refused = await manager.post(`${base}/plans/day/rounds`, ask);
+    expect(refused.status).toBe(409);
+    expect((await manager.get(`${base}/rounds`)).body.items).toEqual([]);
+    await manager.post(`${base}/plans/${made[0]!.id}/lock`);
+    const sentDay = await manager.post(`${base}/plans/day/rounds`, ask);
+    expect(sentDay.status, sentDay.text).toBe(201);
+    const rounds = (await manager.get(`${base}/rounds`)).body.items as RoundSummary[];
+    expect(new Map(rounds.map(({ blockName, dayPlace }) => [blockName, dayPlace]))).toEqual(new Map([['Second', 1], ['First', 2]]));
+    const nia = await app.as(crew.email);
+    const second = rounds.find(({ blockName }) => blockName === 'First')!;
+    const { day } = (await nia.get(`${base}/rounds/${second.id}`)).body as FieldRound;
+    expect(day.map(({ block, place: at, wayS }) => [block, at, wayS === null])).toEqual([['Second', 1, true], ['First', 2, false]]);
+    expect(day[1]!.wayS).toBeGreaterThan(60);
+    const sheet = await nia.get(`${base}/rounds/day-sheet?onDate=2026-07-10`).buffer(true).parse((answer, done) => { const parts: Buffer[] = []; answer.on('data', (part: Buffer) => parts.push(part)); answer.on('end', () => done(null, Buffer.concat(parts))); });
+    expect(sheet.status).toBe(200);
+    const [page] = await readPdf(sheet.body as Buffer);
+    const words = page!.texts.join(' ');
+    expect(words.indexOf('Second')).toBeGreaterThan(0);
+    expect(words.indexOf('First')).toBeGreaterThan(words.indexOf('Second'));
+    // With the first block called off, nobody knows the way to the second.
+    await manager.patch(`${base}/rounds/${rounds.find(({ blockName }) => blockName === 'Second')!.id}`, { state: 'called off' });
+    expect(((await nia.get(`${base}/rounds/${second.id}`)).body as FieldRound).day).toMatchObject([{ block: 'First', place: 2, wayS: null }]);
+    expect((await nia.get(`${base}/rounds/day-sheet?onDate=2026-07-11`)).status).toBe(404);
+  });
+});
+
+describe('the time of a walk', () => {
+  it('follows the speed that was chosen and the slopes of the elevation layer', async () => {
+    const ground = await loadBlockVines(estate.estateId, place.blockId);
+    const grid = gridOf(ground);
+    const walkOf = async (over: object) => {
+      const plan = (await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'Walk', measures: [clusters], seed: 7, ...over })).body as PlanView;
+      return { plan, walk: (await manager.get(`${base}/plans/${plan.id}/walk`)).body as PlanWalk };
+    };
+    const level = await walkOf({});
+    expect(level.walk.slopesFrom).toBeNull();
+    // Twice the speed is half the time.
+    expect((await walkOf({ pace: { kmPerHour: 6.02 } })).plan.walk!.walkingS).toBeCloseTo(level.plan.walk!.walkingS / 2, 6);
+    // A hill of 20 % along the rows, which run north; the class figure is 0.448 m/s for 0.836 on the level.
+    const cells = Float32Array.from({ length: grid.cols * grid.rows }, (_, cell) => 200 - 0.2 * grid.cellSizeM * Math.floor(cell / grid.cols));
+    const layer = await Layer.query().insertAndFetch({ estateId: estate.estateId, type: 'elevation', name: 'Ground of 2024', unit: 'm', source: {} });
+    await BlockLayer.query().insert({ estateId: estate.estateId, layerId: layer.id, blockId: place.blockId, gridKey: grid.key, cells: Buffer.from(encodeCells(cells)), coverage: 1, statistics: {} as never, findings: [] });
+    const steep = await walkOf({});
+    expect(steep.walk.slopesFrom).toBe('Ground of 2024');
+    expect(steep.plan.walk!.walkingS).toBeGreaterThan(1.4 * level.plan.walk!.walkingS);
+    expect(steep.walk.people[0]!.walkingS).toBeCloseTo(steep.plan.walk!.walkingS, 6);
+    const ignored = await walkOf({ pace: { onSlopes: false } });
+    expect(ignored.plan.walk!.walkingS).toBeCloseTo(level.plan.walk!.walkingS, 6);
+    expect(ignored.walk.slopesFrom).toBeNull();
   });
 });
 

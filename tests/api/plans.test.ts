@@ -1,7 +1,8 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
-import type { PlanBasis, PlanView } from '../../shared/contracts/plans.ts';
-import { planChoices } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import type { PlanView } from '../../shared/contracts/plans.ts';
+import { planChoices } from '../../shared/contracts/planChoices.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
@@ -71,6 +72,18 @@ describe('the basis of a plan', () => {
     expect(first).toMatchObject({ source: 'zone', n: 6, outliers: 0, expectedMean: 25, isMeanAssumed: false });
     expect(first!.withOutliers).toBeCloseTo(0.149666, 5);
     expect(second!.source).toBe('block');
+  });
+
+  it('counts the vines that may be drawn by the rule asked for', async () => {
+    const eligible = async (query: string) => ((await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis?${query}`)).body as PlanBasis).zones.map(({ eligible: n }) => n);
+    // 16 rows of 83 vines a strip: without any rule all of them; with one edge row on the outer strips, two vines at each end and
+    // a cell from the neighbouring strip fewer.
+    expect(await eligible('edgeRows=0&endVines=0&borderM=0')).toEqual([1328, 1328, 1328]);
+    expect(await eligible('edgeRows=0&endVines=2&borderM=0')).toEqual([16 * 79, 16 * 79, 16 * 79]);
+    expect(await eligible('edgeRows=3&endVines=0&borderM=0')).toEqual([13 * 83, 1328, 13 * 83]);
+    const [first, middle] = await eligible('edgeRows=0&endVines=0&borderM=6');
+    expect(middle).toBeLessThan(first!);
+    expect((await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis?edgeRows=-1`)).status).toBe(422);
   });
 
   it('refuses zones that were drawn on an outline since changed', async () => {

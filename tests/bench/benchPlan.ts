@@ -1,5 +1,6 @@
 import { measures as catalogue } from '../../shared/catalog/measures.ts';
-import { planChoices, type PlanBasis } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../shared/contracts/planChoices.ts';
 import type { XY } from '../../shared/geo/coordinates.ts';
 import { layRows } from '../../shared/geo/rowsLayout.ts';
 import { vineTable } from '../../shared/geo/vines.ts';

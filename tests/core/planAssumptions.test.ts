@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { handful, planChoices, type PlanBasis } from '../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
+import { handful, planChoices } from '../../shared/contracts/planChoices.ts';
 import { adviseHandful, betweenVines, handfulSeconds, handfulSpread } from '../../shared/sampling/handful.ts';
 import { blockMaths, zoneMaths } from '../../shared/sampling/maths.ts';
 import { pilotReadingsOf } from '../../shared/sampling/pilotReadings.ts';
@@ -19,17 +20,19 @@ const choices = (over: object = {}) => planChoices.parse({ measures: [{ code: 'b
 const visits = (ask: PlanBasis, how = choices()) => answerPlan(ask, how).counts.zones.map((zone) => zone.visits);
 
 describe('a plan after its pilot', () => {
-  // Stein 1945; Cochran 1977 §4.7: n₁ 10, s₁ 1.2, E 0.5, 95 % → 29.475965 → 30; n₁ 15, s₁ 0.5 → stays at 15.
-  const read = basis([{ n: 10, df: 9, spread: 1.2 }, { n: 15, df: 14, spread: 0.5 }, null]);
+  // Stein 1945; Cochran 1977 §§4.6–4.7: n₁ 10, s₁ 1.2, E 0.5, 95 % → 29.475965, of 900 vines 29.475965/(1 + 29.475965/900) = 28.541
+  // → 29 (30 where no vines run out); n₁ 15, s₁ 0.5 → stays at 15.
+  const read = basis([{ n: 10, df: 9, spread: 1.2, mean: 22 }, { n: 15, df: 14, spread: 0.5, mean: 22 }, null]);
 
   it('takes the two-stage rule where the pilot read, and the assumed spread elsewhere', () => {
-    expect(visits(read, planChoices.parse({ ...choices(), afterPilot: true }))).toEqual([30, 15, visits(basis())[2]]);
+    expect(visits(read, planChoices.parse({ ...choices(), afterPilot: true }))).toEqual([29, 15, visits(basis())[2]]);
+    expect(visits(read, planChoices.parse({ ...choices(), afterPilot: true, population: 'endless' }))[0]).toBe(30);
   });
 
   it('keeps the width that the rule promises: t of the pilot, its spread, all the vines', () => {
     const { counts } = answerPlan(read, planChoices.parse({ ...choices(), afterPilot: true }));
-    // t(0.975, 9) = 2.262157 (R): 2.262157 · 1.2 / √30.
-    expect(counts.zones[0]!.halfWidths[0]).toBeCloseTo((2.262157163 * 1.2) / Math.sqrt(30), 8);
+    // t(0.975, 9) = 2.262157 (R): 2.262157 · 1.2 / √29 · √(1 − 29/900).
+    expect(counts.zones[0]!.halfWidths[0]).toBeCloseTo(((2.262157163 * 1.2) / Math.sqrt(29)) * Math.sqrt(1 - 29 / 900), 8);
     expect(counts.zones[0]!.halfWidths[0]).toBeLessThanOrEqual(0.5);
   });
 
@@ -101,6 +104,20 @@ describe('how much of each vine', () => {
     expect(two.counts.visits).toBeLessThan(one.counts.visits);
     expect(two.question.measures[0]!.secondsPerSample).toBe(60);
     expect(handfulSeconds(handful.parse({ withinVine: 1, perVine: 3, perCluster: 10, secondsPerCluster: 5, secondsPerBerry: 2 }))).toBe(75);
+  });
+
+  it('leaves unknown what differs within a vine when every vine has been read', () => {
+    // Cochran 1977 §10.3: V = (1 − n/N) S_b²/n + S_w²/(nm). S² 1.21 of which S_w² 0.36, one cluster: half-width t·√((1 − n/N)·0.85 + 0.36)/√n.
+    const small = { ...basis(), zones: basis().zones.map((zone) => ({ ...zone, vines: 40, eligible: 40 })) };
+    const ask = planChoices.parse({ measures: [{ code: 'brix', handful: handful.parse({ withinVine: 0.6 }) }] });
+    const { question, counts } = answerPlan(small, ask);
+    const n = counts.zones[0]!.visits;
+    const { t } = zoneMaths(question, 'brix')[0]!;
+    const half = (taken: number, factor: number) => (factor * Math.sqrt((1 - taken / 40) * 0.85 + 0.36)) / Math.sqrt(taken);
+    expect(counts.zones[0]!.halfWidths[0]).toBeCloseTo(half(n, t), 10);
+    expect(counts.zones[0]!.halfWidths[0]).toBeLessThanOrEqual(0.5);
+    // More than the vines would suggest if their fruit were known whole.
+    expect(n).toBeGreaterThan(answerPlan(small, choices()).counts.zones[0]!.visits);
   });
 
   it('says in words when the clusters of a vine are said to differ more than all there is', () => {

@@ -2,9 +2,10 @@ import { describe, expect, it } from 'vitest';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { planForBudget, spent, type Budget } from '../../shared/sampling/budget.ts';
 import { bestDivision, mergedSpread, partMeans, type LocatedReading } from '../../shared/sampling/divideZone.ts';
-import { adviseImpractical, mergeZones } from '../../shared/sampling/impractical.ts';
+import { adviseImpractical } from '../../shared/sampling/impractical.ts';
 import type { Spread } from '../../shared/sampling/margins.ts';
 import { planCounts, planMethods, type PlanMeasure, type PlanQuestion } from '../../shared/sampling/planCounts.ts';
+import { mergedFigures } from '../../shared/sampling/mergedZones.ts';
 import { marginLadder, tradeOffCurves } from '../../shared/sampling/tradeOff.ts';
 
 const sd = (value: number): Spread => ({ kind: 'sd', value });
@@ -124,7 +125,26 @@ describe('a budget instead of margins', () => {
     expect(planForBudget(QUESTION, { kind: 'vines', value: 10 })).toEqual({ kind: 'tooSmall', least: 15 });
     const rich = planForBudget(QUESTION, { kind: 'vines', value: 2000 });
     expect(rich).toMatchObject({ kind: 'plan', everyVine: true });
-    expect(() => planForBudget(QUESTION, { kind: 'hours', value: 0 })).toThrow('budget must be above 0');
+    for (const value of [0, -1, Number.NaN]) expect(() => planForBudget(QUESTION, { kind: 'hours', value })).toThrow('budget must be above 0');
+  });
+
+  it('promises no margin that nobody asked for where it pays for every vine', () => {
+    for (const kind of ['eachZone', 'block'] as const) {
+      const question = { ...QUESTION, question: kind };
+      const rich = planForBudget(question, { kind: 'hours', value: 1e9 });
+      if (rich.kind !== 'plan') throw new Error('the budget pays for the minimum');
+      expect(rich.plan.visits).toBe(1800);
+      expect(planCounts({ ...question, measures: question.measures.map((measure) => ({ ...measure, margin: { ...measure.margin, value: measure.margin.value * rich.scale * 1.0001 } })) })).not.toEqual(rich.plan);
+      // A zone of five vines is read whole at any margin: the margins stay as they were.
+      const tiny = planForBudget({ ...question, zones: QUESTION.zones.map(({ zone }) => ({ zone, vines: 5 })) }, { kind: 'vines', value: 40 });
+      expect(tiny).toMatchObject({ kind: 'plan', scale: 1, everyVine: true, plan: { visits: 15 } });
+    }
+  });
+
+  it('knows nothing of a block with a zone of one vine that shall speak for more than itself', () => {
+    const alone = planCounts({ ...QUESTION, question: 'block', measures: [{ ...BRIX, finiteShares: [0, 0, 0] }], zones: QUESTION.zones.map(({ zone }, i) => ({ zone, vines: i === 0 ? 1 : 300 })) });
+    expect(alone.measures[0]!.reached).toBe(false);
+    expect(alone.measures[0]!.blockHalfWidth).toBeNaN();
   });
 });
 
@@ -170,7 +190,18 @@ describe('impractical wishes', () => {
 
   it('come with a margin, a confidence and a pair of zones that would help, in figures', () => {
     const plan = planCounts(greedy);
-    const advice = adviseImpractical({ question: greedy, plan, confidences, limits: { visitsPerZone: 60, hours: null } })!;
+    // Sampled as one: by hand, the two smaller zones' figures put together by mergedFigures (tested below and in pooledZones).
+    const pooledOf = (one: string, other: string): PlanQuestion => {
+      const at = [one, other].map((name) => greedy.zones.findIndex(({ zone }) => zone === name));
+      const rest = <T>(items: readonly T[]) => items.filter((_, i) => !at.includes(i));
+      const zones = [...rest(greedy.zones), { zone: `${one} + ${other}`, vines: at.reduce((sum, i) => sum + greedy.zones[i]!.vines, 0) }];
+      const measures = greedy.measures.map((measure) => {
+        const { spread, mean } = mergedFigures(at.map((i) => ({ vines: greedy.zones[i]!.vines, spread: measure.spreads[i]!, mean: measure.expectedMeans[i]! })));
+        return { ...measure, spreads: [...rest(measure.spreads), spread], expectedMeans: [...rest(measure.expectedMeans), mean] };
+      });
+      return { ...greedy, zones, measures };
+    };
+    const advice = adviseImpractical({ question: greedy, plan, confidences, pooled: pooledOf, limits: { visitsPerZone: 60, hours: null } })!;
     expect(advice.zonesOver).toEqual(['1', '3']);
     const wider = advice.options.find((option) => option.kind === 'widerMargin')!;
     expect(wider.fits).toBe(true);
@@ -195,10 +226,10 @@ describe('impractical wishes', () => {
     // By hand: half and half, sd 1 each, means 2 apart → variance 1 + 1
     expect(mergedSpread([{ vines: 10, sd: 1, mean: 20 }, { vines: 10, sd: 1, mean: 22 }])).toBeCloseTo(Math.SQRT2, 12);
     expect(mergedSpread([{ vines: 10, sd: 1, mean: null }, { vines: 10, sd: 2, mean: 22 }])).toBeCloseTo(Math.sqrt(2.5), 12);
-    const merged = mergeZones({ ...QUESTION, measures: [CLUSTERS] }, 0, 1);
-    expect(merged.zones.map(({ zone, vines }) => [zone, vines])).toEqual([['3', 300], ['1 + 2', 1500]]);
+    const merged = mergedFigures([0, 1].map((i) => ({ vines: QUESTION.zones[i]!.vines, spread: CLUSTERS.spreads[i]!, mean: CLUSTERS.expectedMeans[i]! })));
     // By hand: mean 28.8; sds 7 and 7.5 with weights 0.6 and 0.4; between 0.24 · 4
-    expect(merged.measures[0]!.spreads[1]!.value).toBeCloseTo(Math.sqrt(0.6 * 49 + 0.4 * 56.25 + 0.24 * 4) / 28.8, 12);
+    expect(merged.mean).toBeCloseTo(28.8, 12);
+    expect(merged.spread.value).toBeCloseTo(Math.sqrt(0.6 * 49 + 0.4 * 56.25 + 0.24 * 4) / 28.8, 12);
   });
 });
 

@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { planChoices, type BasisSpread, type PlanBasis } from '../../shared/contracts/plans.ts';
+import type { BasisSpread, PlanBasis } from '../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../shared/contracts/planChoices.ts';
 import { mergedFigures } from '../../shared/sampling/mergedZones.ts';
 import { answerPlan, questionOf } from '../../shared/sampling/plan.ts';
 import { headOf, joinPools, membersOf, partPool, pooledBasis } from '../../shared/sampling/pooledZones.ts';
@@ -11,7 +12,7 @@ function basis(spreads: readonly BasisSpread[], vines: readonly number[] = [100,
   return {
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: vines.map((count, i) => ({ id: `zone ${i + 1}`, number: i + 1, name: i === 1 ? '' : `Strip ${i + 1}`, colour: null, vines: count, eligible: count - 20 })),
-    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [...spreads], pilots: spreads.map(() => ({ n: 10, df: 9, spread: 1 })) }],
+    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [...spreads], pilots: spreads.map(() => ({ n: 10, df: 9, spread: 1, mean: 22 })) }],
     settings: { floorVines: 2, impracticalSamples: 60, dayHours: 100, costPerHour: 20, currency: 'EUR' },
   };
 }
@@ -63,8 +64,9 @@ describe('zones taken as one', () => {
     expect(first!.withoutOutliers).toBeCloseTo(first!.value, 12);
     expect(first!.withOutliers!).toBeGreaterThan(first!.value);
     expect(second!.value).toBe(1.5);
-    // The rule of a pilot is that of single zones.
-    expect(pooled.measures[0]!.pilots).toEqual([null, { n: 10, df: 9, spread: 1 }]);
+    // Weights ¼ and ¾, both s 1 of ten, no difference between means: ¼(1 − ¾/10) + ¾(1 − ¼/10) = 0.9625, a little below 1 because
+    // two means of ten differ by chance; degrees of freedom 2·0.9625²/(2·0.23125²/9 + 2·0.73125²/9) = 14.17 → 14.
+    expect(pooled.measures[0]!.pilots).toEqual([{ n: 20, df: 14, mean: 22, spread: expect.closeTo(Math.sqrt(0.9625), 12) }, { n: 10, df: 9, spread: 1, mean: 22 }]);
     const guessed = pooledBasis(basis([spread(1), spread(1, { source: 'trade', n: 0, seasons: [], df: null }), spread(1)]), [[1, 2]]);
     expect(guessed.measures[0]!.spreads[0]).toMatchObject({ source: 'trade', n: 0, df: null });
   });

@@ -1,12 +1,15 @@
 import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import type { Labels } from '../../../shared/analysis/grid.ts';
-import type { PlanBasis, PlanChoices } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 import { drawPlan, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
 import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
-import { headOf, type Pools } from '../../../shared/sampling/pooledZones.ts';
+import { headOf } from '../../../shared/sampling/pooledZones.ts';
+import { pacedGround } from '../../../shared/sampling/terrain.ts';
 import { gridOf } from '../../ground/blockVines.ts';
+import { loadTerrain } from '../../ground/terrain.ts';
 import { loadPlanBasis } from './planBasis.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
@@ -23,26 +26,28 @@ export interface ComposedPlan {
 
 /** A plan with its vines and walk: reads the ground and history, then calculates; writes nothing. */
 export async function composePlan(estateId: string, zoningId: string, made: { choices: PlanChoices; seed: number }): Promise<ComposedPlan> {
-  const planGround = await loadPlanGround(estateId, zoningId);
-  const basis = await loadPlanBasis(estateId, planGround, made.choices.spread);
-  const answer = answerPlan(basis, made.choices);
+  const { choices } = made;
+  const planGround = await loadPlanGround(estateId, zoningId, choices.draw);
+  const [basis, terrain] = await Promise.all([loadPlanBasis(estateId, planGround, choices.spread), loadTerrain(estateId, planGround.ground)]);
+  const answer = answerPlan(basis, choices);
   const { ground, unusable, gateXY } = planGround;
   const draw = drawPlan({
-    rows: ground.rows, table: ground.vines, ...sampledZones(planGround, made.choices.pools), unusable, gateXY,
+    rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, ground: pacedGround(choices.pace, terrain),
     wanted: answer.counts.zones.map(({ zone, visits, counts }) => ({ zone: Number(zone), visits, counts })),
     measures: answer.question.measures.map(({ code, secondsPerSample }) => ({ code, secondsPerSample })),
     seed: made.seed,
   });
-  return { choices: made.choices, planGround, basis, answer, draw };
+  return { choices, planGround, basis, answer, draw };
 }
 
 /** Zones as they are sampled: those of a pool are one, and the border between them is none. */
-function sampledZones({ zoning, ground, zoneOf, nearBorder }: PlanGround, pools: Pools): { zoneOfVine: Uint8Array; nearBorder: Uint8Array } {
-  if (pools.length === 0) return { zoneOfVine: zoneOf, nearBorder };
+function sampledZones({ zoning, ground, zoneOf, nearBorder }: PlanGround, { pools, draw }: PlanChoices): { zoneOfVine: Uint8Array; nearBorder?: Uint8Array } {
+  if (pools.length === 0) return { zoneOfVine: zoneOf, ...(nearBorder ? { nearBorder } : {}) };
   const headOfZone = Uint8Array.from({ length: 256 }, (_, zone) => headOf(pools, zone));
   const zoneOfVine = zoneOf.map((zone) => headOfZone[zone]!);
+  if (nearBorder === null) return { zoneOfVine };
   const labels = decodeLabels(zoning.labels!).map((zone) => headOfZone[zone]!) as Labels;
-  return { zoneOfVine, nearBorder: vinesNearBorder({ grid: gridOf(ground), labels }, { ...ground.vines, zoneOfVine }) };
+  return { zoneOfVine, nearBorder: vinesNearBorder({ grid: gridOf(ground), labels }, { ...ground.vines, zoneOfVine }, draw.borderM ?? undefined) };
 }
 
 /** What is stored of the calculation beside choices and seed. NaN becomes null on the way. */

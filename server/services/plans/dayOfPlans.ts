@@ -1,5 +1,5 @@
 import type { z } from 'zod';
-import type { DayWalk, dayQuestion } from '../../../shared/contracts/plans.ts';
+import type { DayWalk, dayQuestion } from '../../../shared/contracts/planWalks.ts';
 import { fromUtm, toUtm } from '../../../shared/geo/utm.ts';
 import { chainBlocks } from '../../../shared/sampling/walkChain.ts';
 import type { Access } from '../../access/access.ts';

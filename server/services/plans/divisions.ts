@@ -2,7 +2,9 @@ import { decodeFloatCells, decodeLabels } from '../../../shared/analysis/cellByt
 import { cellAt, type Cells, type Grid, type Labels } from '../../../shared/analysis/grid.ts';
 import { rowRuns, snapToRows } from '../../../shared/analysis/snapToRows.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
-import type { PlanBasis, PlanChoices, ZoneDivision } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
+import type { ZoneDivision } from '../../../shared/contracts/plans.ts';
 import { bestDivision, partMeans, type DivideQuestion, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { membersOf } from '../../../shared/sampling/pooledZones.ts';
@@ -28,7 +30,7 @@ interface LayerOnVines {
 /** For each zone that the plan asks too much of: the cut along one layer that saves most, where the readings suffice to judge. */
 export async function divisionsOf(access: Access, zoningId: string, choices: PlanChoices): Promise<ZoneDivision[]> {
   const { estateId } = access;
-  const planGround = await loadPlanGround(estateId, zoningId);
+  const planGround = await loadPlanGround(estateId, zoningId, choices.draw);
   const basis = await loadPlanBasis(estateId, planGround, choices.spread);
   const answer = answerPlan(basis, choices);
   if (answer.advice === null) return [];

@@ -1,5 +1,6 @@
 import type { Access } from '../../access/access.ts';
-import type { BasisMeasure, PlanBasis, SpreadChoices } from '../../../shared/contracts/plans.ts';
+import type { BasisMeasure, PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import type { BasisChoices, SpreadChoices } from '../../../shared/contracts/planChoices.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { pilotReadingsOf } from '../../../shared/sampling/pilotReadings.ts';
@@ -22,8 +23,8 @@ const enoughOwnReadings = 8;
 const otherBlocksRead = 12;
 
 /** The basis of a plan on a zoning, for the screen that answers while margins move. */
-export async function planBasisOf(access: Access, zoningId: string, how: SpreadChoices): Promise<PlanBasis> {
-  return loadPlanBasis(access.estateId, await loadPlanGround(access.estateId, zoningId), how);
+export async function planBasisOf(access: Access, zoningId: string, { spread, draw }: BasisChoices): Promise<PlanBasis> {
+  return loadPlanBasis(access.estateId, await loadPlanGround(access.estateId, zoningId, draw), spread);
 }
 
 /** What is known when a plan is made on a zoning: zones, measures, and the spread of each with its source. */

@@ -1,6 +1,7 @@
 import type { Point } from 'geojson';
 import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
-import type { BasisZone } from '../../../shared/contracts/plans.ts';
+import type { BasisZone } from '../../../shared/contracts/planBasis.ts';
+import { drawChoices, type DrawChoices } from '../../../shared/contracts/planChoices.ts';
 import type { XY } from '../../../shared/geo/coordinates.ts';
 import { toUtm } from '../../../shared/geo/utm.ts';
 import { eligibleVines } from '../../../shared/sampling/eligible.ts';
@@ -18,7 +19,8 @@ export interface PlanGround {
   ground: BlockVines;
   zoneOf: Uint8Array;
   unusable: Uint8Array;
-  nearBorder: Uint8Array;
+  /** Null where vines may be drawn up to the borders of zones. */
+  nearBorder: Uint8Array | null;
   zones: BasisZone[];
   gateXY: XY;
   /** True when the block names no gate, so that walks begin at the start post of its first row. */
@@ -26,7 +28,7 @@ export interface PlanGround {
 }
 
 /** Loads what a plan stands on. Refuses zonings without labels and zonings made on an outline since changed. */
-export async function loadPlanGround(estateId: string, zoningId: string): Promise<PlanGround> {
+export async function loadPlanGround(estateId: string, zoningId: string, draw: DrawChoices = drawChoices.parse({})): Promise<PlanGround> {
   const zoning = await Zoning.query().findOne({ estateId, id: zoningId }).throwIfNotFound();
   const ground = await loadBlockVines(estateId, zoning.blockId);
   const name = ground.block.name;
@@ -37,16 +39,16 @@ export async function loadPlanGround(estateId: string, zoningId: string): Promis
   if (zoning.gridKey !== grid.key) throw new Unusable('zoningOutOfDate', `The outline of ${name} changed after zoning ${zoning.number} was made. Run the zoning again, then plan.`);
   const zoneOf = zonesOfVines(ground, zoning);
   const unusable = Uint8Array.from(ground.states, (state) => (state === null || state === 'sick' ? 0 : 1));
-  const nearBorder = vinesNearBorder({ grid, labels: decodeLabels(zoning.labels) }, { ...ground.vines, zoneOfVine: zoneOf });
-  const zones = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ id, number, name: zoneName, colour, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder }, number) }));
+  const nearBorder = draw.borderM === 0 ? null : vinesNearBorder({ grid, labels: decodeLabels(zoning.labels) }, { ...ground.vines, zoneOfVine: zoneOf }, draw.borderM ?? undefined);
+  const zones = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ id, number, name: zoneName, colour, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }, number) }));
   return { zoning, ground, zoneOf, unusable, nearBorder, zones: zones.filter(({ vines }) => vines > 0), ...(await gateOf(estateId, ground)) };
 }
 
-function vinesOfZone({ ground, zoneOf, unusable, nearBorder }: Pick<PlanGround, 'ground' | 'zoneOf' | 'unusable' | 'nearBorder'>, zone: number): { vines: number; eligible: number } {
+function vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }: Pick<PlanGround, 'ground' | 'zoneOf' | 'unusable' | 'nearBorder'> & { draw: DrawChoices }, zone: number): { vines: number; eligible: number } {
   const candidates: number[] = [];
   zoneOf.forEach((of, vine) => of === zone && candidates.push(vine));
   const vines = candidates.filter((vine) => isBearing(ground.states[vine]!)).length;
-  const strict = eligibleVines({ table: ground.vines, candidates, unusable, nearBorder }, 0).vines.length;
+  const strict = eligibleVines({ table: ground.vines, candidates, unusable, rule: draw, ...(nearBorder ? { nearBorder } : {}) }, 0).vines.length;
   // Rules are relaxed before a draw comes up short, so a narrow zone can still give its bearing vines.
   return { vines, eligible: strict >= 2 ? strict : vines };
 }

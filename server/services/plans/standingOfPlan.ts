@@ -1,4 +1,6 @@
-import { planChoices, type PlanBasis, type PlanStanding } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
+import type { PlanStanding } from '../../../shared/contracts/plans.ts';
 import type { FieldMeasure } from '../../../shared/contracts/rounds.ts';
 import { standingOf, type FieldValue, type StandingStop } from '../../../shared/field/enoughHere.ts';
 import { headOf, pooledBasis } from '../../../shared/sampling/pooledZones.ts';

@@ -1,7 +1,8 @@
-import type { PlanBasis } from '../../../shared/contracts/plans.ts';
-import { planChoices } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import type { XY } from '../../../shared/geo/coordinates.ts';
 import { questionOf } from '../../../shared/sampling/plan.ts';
+import type { Terrain } from '../../../shared/sampling/terrain.ts';
 import { Unusable } from '../../errors.ts';
 import type { ShareInput } from '../../ground/shareRound.ts';
 import type { Plan } from '../../models/Plan.ts';
@@ -10,9 +11,10 @@ import type { PlanGround } from './planGround.ts';
 import { sampledZones } from './standingOfPlan.ts';
 
 /** The vines of a plan as a walk takes them, with the seconds that the plan allows at each. */
-export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readonly Target[], how: { gateXY: XY; people: number; end: 'gate' | 'anywhere' }): ShareInput {
+export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readonly Target[], how: { gateXY: XY; people: number; end: 'gate' | 'anywhere'; terrain: Terrain | null }): ShareInput {
   const { basis } = plan.result as { basis: PlanBasis };
-  const { measures } = questionOf(basis, planChoices.parse(plan.options));
+  const choices = planChoices.parse(plan.options);
+  const { measures } = questionOf(basis, choices);
   const seconds = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
   const { sampledZoneOf } = sampledZones(plan);
   const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => ({
@@ -20,5 +22,5 @@ export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readon
     serviceS: measureCodes.reduce((sum, code) => sum + (seconds.get(code) ?? 0), 0),
   }));
   if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);
-  return { rows: ground.rows, vines, ...how };
+  return { rows: ground.rows, vines, pace: choices.pace, ...how };
 }

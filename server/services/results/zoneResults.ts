@@ -1,5 +1,5 @@
 import { groupBy } from '../../../shared/groupBy.ts';
-import { planChoices } from '../../../shared/contracts/plans.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import type { BlockResult, MeasuredMean, ResultsView, TogetherResult, ZoneResult } from '../../../shared/contracts/results.ts';
 import { howManyMore, intervalOf, type Estimate } from '../../../shared/sampling/precision.ts';
 import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';

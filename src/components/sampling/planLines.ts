@@ -1,4 +1,5 @@
-import type { BasisMeasure, BasisSpread, PlanBasis, PlanChoices, PlannedMeasureChoice } from '../../../shared/contracts/plans.ts';
+import type { BasisMeasure, BasisSpread, PlanBasis } from '../../../shared/contracts/planBasis.ts';
+import type { PlanChoices, PlannedMeasureChoice } from '../../../shared/contracts/planChoices.ts';
 import { sdInterval } from '../../../shared/sampling/sdInterval.ts';
 import type { PlanAnswer } from '../../../shared/sampling/plan.ts';
 import type { Evidence } from '../base/evidence.ts';

@@ -7,7 +7,7 @@ import { RoundPerson } from '../../../server/models/RoundPerson.ts';
 import { Target } from '../../../server/models/Target.ts';
 import { Zoning } from '../../../server/models/Zoning.ts';
 import { vineWords } from '../../../server/services/plans/viewPlan.ts';
-import { planChoices } from '../../../shared/contracts/plans.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import { makeStripBlock } from './makeStripBlock.ts';
 import type { Agent, TestApp } from './testApp.ts';
 

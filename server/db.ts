@@ -21,6 +21,8 @@ import * as m017 from '../migrations/017_marks_of_older_layers.ts';
 import * as m018 from '../migrations/018_round_shares.ts';
 import * as m019 from '../migrations/019_pick_intervals.ts';
 import * as m020 from '../migrations/020_vine_history.ts';
+import * as m021 from '../migrations/021_day_order.ts';
+import * as m022 from '../migrations/022_missing_vines.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -44,6 +46,8 @@ const migrations: Record<string, Knex.Migration> = {
   '018_round_shares': m018,
   '019_pick_intervals': m019,
   '020_vine_history': m020,
+  '021_day_order': m021,
+  '022_missing_vines': m022,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

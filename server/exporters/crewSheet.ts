@@ -1,8 +1,9 @@
 import PDFDocument from 'pdfkit';
 import QRCode from 'qrcode';
-import type { FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
+import type { DayStop, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { restrictionsWithin } from '../../shared/field/entry.ts';
 import { dayBounds } from '../../shared/season/dayBounds.ts';
+import { minutes } from './daySheet.ts';
 import { measureWords } from './measureWords.ts';
 import { drawSheetStrip } from './sheetStrip.ts';
 import { paperLocale, sheetTexts, type SheetLanguage } from './sheetTexts.ts';
@@ -12,8 +13,6 @@ export interface SheetPart {
   round: FieldRound;
   person: string;
   language: SheetLanguage;
-  /** The person's other rounds of the day, in the order they were sent. */
-  alsoToday?: readonly { block: string; vines: number }[];
 }
 
 export interface SheetOptions {
@@ -71,7 +70,7 @@ function drawFoot(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.font('Helvetica').fontSize(8).text(`${round.blockName}, ${person}. ${sheetTexts[language].page} ${page}`, edge, pdf.page.height - edge - 9, { lineBreak: false });
 }
 
-function drawHead(pdf: PDFKit.PDFDocument, { round, person, language, alsoToday = [] }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
+function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[language];
   const day = new Intl.DateTimeFormat(paperLocale(language), { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(`${round.onDate}T12:00:00Z`));
   const side = 92;
@@ -82,7 +81,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language, alsoToday 
   pdf.fontSize(12).text(day, { width });
   pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}. ${texts.start}: ${round.gate || '-'}`, { width });
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
-  if (alsoToday.length > 0) pdf.text(`${texts.alsoToday}: ${alsoToday.map(({ block, vines }) => `${block}, ${vines} ${texts.vines}`).join('; ')}`, { width });
+  drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
   const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}: ${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
   const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
@@ -91,6 +90,23 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language, alsoToday 
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);
   drawSafety(pdf, { round, texts, language, timeZone });
+}
+
+/** What else the day holds, so that nobody goes home after the first block; in its order where it was sent as one. */
+function drawDay(pdf: PDFKit.PDFDocument, { id, day }: FieldRound, { texts, width }: { texts: Texts; width: number }): void {
+  if (day.length < 2) return;
+  const blockWords = ({ block, vines }: DayStop) => `${block}, ${vines} ${texts.vines}`;
+  if (day.every(({ place }) => place === null)) {
+    pdf.text(`${texts.alsoToday}: ${day.filter(({ roundId }) => roundId !== id).map(blockWords).join('; ')}`, { width });
+    return;
+  }
+  pdf.text(`${texts.dayOrder}: `, { width, continued: true });
+  day.forEach((stop, index) => {
+    const way = stop.wayS === null ? '' : ` (${minutes(stop.wayS)})`;
+    const isHere = stop.roundId === id;
+    pdf.font(isHere ? 'Helvetica-Bold' : 'Helvetica').text(`${index + 1} ${isHere ? `${stop.block}, ${texts.thisSheet}` : blockWords(stop)}${way}${index < day.length - 1 ? '; ' : ''}`, { width, continued: index < day.length - 1 });
+  });
+  pdf.font('Helvetica');
 }
 
 function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone }: { round: FieldRound; texts: Texts; language: SheetLanguage; timeZone: string }): void {

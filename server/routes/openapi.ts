@@ -10,11 +10,14 @@ import { newNotice } from '../../shared/contracts/notices.ts';
 import { resultsView, ripeningView } from '../../shared/contracts/results.ts';
 import { newTicket, reviewView } from '../../shared/contracts/tickets.ts';
 import { jobView } from '../../shared/contracts/jobs.ts';
-import { dayQuestion, dayWalk, divisionQuestion, newPlan, planBasis, planChange, planRedraw, planStanding, planView, planWalk, zoneDivision } from '../../shared/contracts/plans.ts';
+import { planBasis } from '../../shared/contracts/planBasis.ts';
+import { newPlan, planChange, planRedraw } from '../../shared/contracts/planChoices.ts';
+import { divisionQuestion, planStanding, planView, zoneDivision } from '../../shared/contracts/plans.ts';
+import { dayQuestion, dayWalk, planWalk } from '../../shared/contracts/planWalks.ts';
 import { asideReading, blockLayerView, cleaningChange, layerBeside, layerChange, overrideChange, reliefView } from '../../shared/contracts/layers.ts';
 import { batchAnswer, readingBatch } from '../../shared/contracts/readings.ts';
 import { blockRows, censusChange, numberingChange } from '../../shared/contracts/rows.ts';
-import { fieldRound, newRound, roundChange } from '../../shared/contracts/rounds.ts';
+import { fieldRound, newDay, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { weatherDay, weatherFile, weatherReading, weatherView } from '../../shared/contracts/weather.ts';
 import { invitationAnswer, newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { openSession, passwordChange, resetAnswer, resetRequest } from '../../shared/contracts/account.ts';
@@ -112,6 +115,8 @@ const operations: Operation[] = [
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/standing', summary: 'How far each zone is with what was read: enough here, or so many more', answer: z.object({ items: z.array(planStanding) }) },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/divisions', summary: 'Zones that a plan asks too much of, divided where their readings say that this saves work', body: divisionQuestion, answer: z.object({ items: z.array(zoneDivision) }) },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/export', summary: 'The vines of a plan as a file (format=csv or gpx)' },
+  { method: 'post', path: '/api/estates/{estateId}/plans/day/rounds', summary: 'Send the plans of several blocks to the same people as one day, in order', body: newDay },
+  { method: 'get', path: '/api/estates/{estateId}/rounds/day-sheet', summary: 'The order of everybody’s blocks on a day as PDF, a page a person; crew their own' },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/rounds', summary: 'Send the vines of a plan to people for a day', body: newRound },
   { method: 'get', path: '/api/estates/{estateId}/rounds', summary: 'Rounds; crew see their own' },
   { method: 'get', path: '/api/estates/{estateId}/rounds/{roundId}', summary: 'All that a phone needs for a day', answer: fieldRound },

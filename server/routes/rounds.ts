@@ -1,7 +1,7 @@
 import { Router } from 'express';
 import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
-import { newRound, roundChange } from '../../shared/contracts/rounds.ts';
+import { id, isoDate } from '../../shared/contracts/common.ts';
+import { newDay, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { requireReach } from '../access/access.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts';
@@ -9,13 +9,16 @@ import { fieldRound } from '../services/rounds/fieldRound.ts';
 import { listRounds } from '../services/rounds/listRounds.ts';
 import { makeRound } from '../services/rounds/makeRound.ts';
 import { printBlankLabels, printLabels } from '../services/rounds/printLabels.ts';
+import { printDay } from '../services/rounds/printDay.ts';
 import { printSheet } from '../services/rounds/printSheet.ts';
+import { sendDay } from '../services/rounds/sendDay.ts';
 
 const filter = z.object({ block: id.optional(), plan: id.optional() });
 
 /** Somebody else's walk, for typing their sheet. */
 const walkQuery = z.object({ person: id.optional() });
 const sheetQuery = z.object({ paper: z.enum(['a4', 'letter']).default('a4') });
+const dayQuery = sheetQuery.extend({ onDate: isoDate });
 const labelPaper = z.enum(['a4', 'letter', 'single']).default('a4');
 const labelQuery = z.object({ paper: labelPaper, per: z.enum(['vine', 'zone']).default('vine') });
 const blankQuery = z.object({ paper: labelPaper, count: z.coerce.number().int().min(1, 'Print at least one label.').max(500, 'At most 500 labels at once.') });
@@ -25,9 +28,17 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
   const router = Router({ mergeParams: true });
   const own = allow('readings.record', 'own');
 
+  router.post('/plans/day/rounds', allow('rounds.assign'), async (request, response) => {
+    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    response.status(201).json(await sendDay(accessOf(request), newDay.parse(request.body), { publicUrl }));
+  });
   router.post('/plans/:planId/rounds', allow('rounds.assign'), async (request, response) => {
     const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
     response.status(201).json(await makeRound(accessOf(request), idParam(request, 'planId'), newRound.parse(request.body), { publicUrl }));
+  });
+  router.get('/rounds/day-sheet', allow('sheets.print', 'own'), async (request, response) => {
+    const { name, body } = await printDay(accessOf(request), { ...dayQuery.parse(request.query), now: new Date() });
+    response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   router.get('/rounds', own, async (request, response) => {
     const { block, plan } = filter.parse(request.query);

@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id, isoDate, lonLat } from './common.ts';
+import { dayQuestion } from './planWalks.ts';
 import { postColour } from './blocks.ts';
 import { restrictionView } from './restrictions.ts';
 import { vineState } from './rows.ts';
@@ -16,6 +17,25 @@ export const newRound = z.object({
 });
 export type NewRound = z.infer<typeof newRound>;
 
+/** Plans of several blocks sent to the same people as one day. */
+export const newDay = dayQuestion.extend(newRound.pick({ onDate: true, people: true, end: true, notes: true }).shape);
+export type NewDay = z.infer<typeof newDay>;
+
+/** A block of somebody's day. */
+export const dayStop = z.object({
+  roundId: id,
+  block: z.string(),
+  gate: z.string(),
+  vines: z.number().int(),
+  /** Place in a day that was sent as one; null for a round sent by itself. */
+  place: z.number().int().nullable(),
+  /** From the block before. */
+  wayS: z.number().nullable(),
+  /** Walking and sampling. */
+  workS: z.number(),
+});
+export type DayStop = z.infer<typeof dayStop>;
+
 export const roundState = z.enum(['sent', 'open', 'closed', 'called off']);
 export const roundChange = z.object({ state: z.enum(['open', 'closed', 'called off']), /** When the phone began; the server's clock otherwise. */ startedAt: z.iso.datetime({ offset: true }).optional(), /** Closed for everybody, not one's own part only. */ whole: z.boolean().optional() });
 
@@ -29,6 +49,8 @@ export const roundSummary = z.object({
   blockName: z.string(),
   onDate: z.string(),
   state: roundState,
+  /** Place in a day over several blocks. */
+  dayPlace: z.number().int().nullable(),
   gate: z.string(),
   notes: z.string(),
   people: z.array(roundPerson),
@@ -124,6 +146,8 @@ export const fieldRound = z.object({
   lifters: z.array(z.string()).default([]),
   /** When the server looked for restrictions. */
   checkedAt: z.string(),
+  /** The reader's blocks of that day, in their order. */
+  day: z.array(dayStop).default([]),
   acknowledgedAt: z.string().nullable(),
 });
 export type FieldRound = z.infer<typeof fieldRound>;

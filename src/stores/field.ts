@@ -18,6 +18,9 @@ import { pruneReceived } from '../offline/prune.ts';
 import { tellOtherTabs, whenAnotherTabWrites } from '../offline/tabs.ts';
 import { totalWaiting } from '../offline/waiting.ts';
 
+/** Days as the server lists them, the blocks of a day in the order they were sent in. */
+const byDayAndPlace = (a: RoundSummary, b: RoundSummary) => b.onDate.localeCompare(a.onDate) || (a.dayPlace ?? Infinity) - (b.dayPlace ?? Infinity) || 0;
+
 interface Owner {
   estateId: string;
   personId: string;
@@ -90,7 +93,7 @@ export const useFieldStore = defineStore('field', () => {
   async function loadWork(): Promise<void> {
     const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`, { withinMs: patienceMs }));
     if (!fresh) return;
-    const mine = fresh.items.filter(({ isMine, state, people }) => isMine && (state === 'sent' || state === 'open') && !people.some(({ id, finishedAt }) => id === owner.personId && finishedAt !== null));
+    const mine = fresh.items.filter(({ isMine, state, people }) => isMine && (state === 'sent' || state === 'open') && !people.some(({ id, finishedAt }) => id === owner.personId && finishedAt !== null)).sort(byDayAndPlace);
     // What there is to do shows at once; each round may be started as soon as it is on the phone.
     [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
     await Promise.all(mine.map(async ({ id }) => {

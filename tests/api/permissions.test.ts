@@ -149,6 +149,8 @@ const doors: Door[] = [
   door('get', `/plans/${nobody}/standing`, 'plans.margins', 'propose'),
   door('get', `/plans/${nobody}/export`, 'plans.margins', 'propose'),
   door('post', `/plans/${nobody}/rounds`, 'rounds.assign'),
+  door('post', '/plans/day/rounds', 'rounds.assign'),
+  door('get', '/rounds/day-sheet', 'sheets.print', 'own'),
   door('get', '/rounds', 'readings.record', 'own'),
   door('get', `/rounds/${nobody}`, 'readings.record', 'own'),
   door('patch', `/rounds/${nobody}`, 'readings.record', 'own'),

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import type { FieldMeasure, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
+import type { DayStop, FieldMeasure, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { crewSheet, type SheetPart } from '../../server/exporters/crewSheet.ts';
+import { daySheet } from '../../server/exporters/daySheet.ts';
 import { readPdf } from './pdfText.ts';
 
 const measure = (code: string, measuredIn: 'field' | 'lab', unit = 'g'): FieldMeasure => ({ code, name: '', unit, decimals: 1, minimum: 0, maximum: 100, margin: 1, marginKind: 'absolute', confidence: 0.95, skewed: false, measuredIn });
@@ -14,9 +15,10 @@ function round(stops: WalkStop[], asked = measures): FieldRound {
     id: '', planId: '', planName: 'Plan', blockId: '', blockName: 'Marl', estateName: 'Estate', onDate: '2026-08-20', state: 'sent', gate: 'North gate', notes: '', startPostColour: 'red', endPostColour: 'blue', vineOneEnd: 'start',
     people: [], zones: [{ number: 1, name: 'Upper + Lower', colour: null, vines: 100, targets: stops.length }], measures: asked,
     rows: [{ id: 'r3', label: '3', firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [], ends: null }],
-    stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], lifters: [], checkedAt: '2026-08-20T04:10:00Z', acknowledgedAt: null,
+    stops, others: [], received: [], doneTargetIds: [], safety: { emergencyNumber: '112', meetingPoint: 'Press yard' }, restrictions: [], lifters: [], checkedAt: '2026-08-20T04:10:00Z', day: [], acknowledgedAt: null,
   };
 }
+const stopOfDay = (roundId: string, block: string, place: number | null): DayStop => ({ roundId, block, gate: '', vines: 48, place, wayS: place !== null && place > 1 ? 360 : null, workS: 5400 });
 const options = { paper: 'a4' as const, link: 'https://example.org/r', timeZone: 'Europe/Paris' };
 const pagesOf = async (part: Partial<SheetPart> & { round: FieldRound }, paper: 'a4' | 'letter' = 'a4') => readPdf(await crewSheet([{ person: 'Nia Holt', language: 'en', ...part }], { ...options, paper }));
 /** Boxes to write in are as high as a line; the strip's squares are filled, not drawn round. */
@@ -73,10 +75,32 @@ describe('the crew sheet', () => {
   });
 
   it('speaks the language of its person, names post colours, zones sampled as one, safety, and what else the day holds', async () => {
-    const english = (await pagesOf({ round: round([stop(1, ['clusterCount'])]), alsoToday: [{ block: 'Millrace', vines: 48 }] })).flatMap(({ texts }) => texts).join(' ');
+    const english = (await pagesOf({ round: { ...round([stop(1, ['clusterCount'])]), id: 'here', day: [stopOfDay('here', 'Marl', null), stopOfDay('r2', 'Millrace', null)] } })).flatMap(({ texts }) => texts).join(' ');
     expect(english).toMatch(/Thursday,? 20 August 2026/u);
     for (const words of ['RED', 'BLUE', 'Zone 1 (Upper + Lower): 1', 'Emergency: 112', 'Meeting point: Press yard', 'Also today: Millrace, 48 vines', 'No restriction recorded']) expect(english).toContain(words);
     const spanish = (await pagesOf({ round: round([stop(1, ['clusterCount'])]), language: 'es' })).flatMap(({ texts }) => texts).join(' ');
     for (const words of ['jueves, 20 de agosto de 2026', 'ROJO', 'Hilera', 'Punto de encuentro']) expect(spanish).toContain(words);
+  });
+
+  it('gives the order of a day over several blocks, this one marked, with the ways between them', async () => {
+    const day = [stopOfDay('r1', 'Millrace', 1), stopOfDay('here', 'Marl', 2), stopOfDay('r3', 'Church Piece', 3)];
+    const english = (await pagesOf({ round: { ...round([stop(1, ['clusterCount'])]), id: 'here', day } })).flatMap(({ texts }) => texts).join(' ').replaceAll(/\s+/g, ' ');
+    expect(english).toContain('Order today: 1 Millrace, 48 vines; 2 Marl, this sheet (6 min); 3 Church Piece, 48 vines (6 min)');
+    expect(english).not.toContain('Also today');
+  });
+});
+
+describe('the page of a day', () => {
+  it('gives each person the blocks in order, with ways, work and when each is done, on A4 and Letter', async () => {
+    const stops = [stopOfDay('r1', 'Millrace', 1), stopOfDay('r2', 'Marl', 2)];
+    const body = (paper: 'a4' | 'letter') => daySheet([{ person: 'Nia Holt', language: 'en', stops }, { person: 'Teo Marsh', language: 'fr', stops: stops.slice(0, 1) }], { paper, estateName: 'Estate', onDate: '2026-08-20', meetingPoint: 'Press yard', emergencyNumber: '112', at: new Date('2026-08-19T08:00:00Z') });
+    const pages = await readPdf(await body('a4'));
+    expect(pages).toHaveLength(2);
+    const [nia, teo] = pages.map(({ texts }) => texts.join(' ').replaceAll(/\s+/g, ' '));
+    // 90 minutes; then 6 on the way and 90 more.
+    for (const words of ['Nia Holt', 'Thursday', '1 Millrace 48 vines, 1 h 30 min. Done after 1 h 30 min', 'On the way 6 min', '2 Marl 48 vines, 1 h 30 min. Done after 3 h 06 min', 'Emergency: 112']) expect(nia).toContain(words);
+    for (const words of ['Teo Marsh', 'jeudi', 'ceps', 'Urgence: 112']) expect(teo).toContain(words);
+    const [letter] = await readPdf(await body('letter'));
+    expect([letter!.width, letter!.height]).toEqual([612, 792]);
   });
 });

@@ -5,7 +5,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
 import { cellAt } from '../../shared/analysis/grid.ts';
 import type { CellsGrid } from '../../shared/contracts/layers.ts';
-import type { PlanView } from '../../shared/contracts/plans.ts';
+import type { PlanSummary, PlanView } from '../../shared/contracts/plans.ts';
 import { toUtm } from '../../shared/geo/utm.ts';
 import { readPdf, type PdfPage } from '../core/pdfText.ts';
 import { startApplication, type Application } from './support/application.ts';
@@ -101,7 +101,7 @@ describe('from a pilot to paper', () => {
     await page.getByText(/^Planned with/).waitFor();
     await page.getByText(/^The pilot, n \d+$/).first().waitFor();
     await page.getByRole('button', { name: 'Show', exact: true }).first().click();
-    await page.getByText('n = max(n₁, ⌈(t · s₁ / E)²⌉)').waitFor();
+    await page.getByText('n = max(n₁, ⌈n₀ / (1 + n₀ / N)⌉), n₀ = (t · s₁ / E)²').waitFor();
     await page.getByText(/Stein 1945/).waitFor();
   });
 
@@ -172,5 +172,29 @@ describe('from a pilot to paper', () => {
     const boxes = sheet.flatMap((one) => one.boxes.filter(({ height }) => height === 25));
     expect(boxes).toHaveLength(brix.targets.reduce((sum, { measures }) => sum + measures.length, 0));
     await page.getByText('Go on as planned').first().waitFor();
+  });
+
+  it('several blocks go out as one day, in an order that the list and the page of the day keep', async () => {
+    const { items } = await asked<{ items: PlanSummary[] }>('/plans');
+    const locked = items.filter(({ state }) => state === 'locked');
+    const [one, other] = [locked[0]!, locked.find(({ blockId }) => blockId !== locked[0]!.blockId)!];
+    await page.goto(`${app.url}/e/${estateId}/sampling`);
+    for (const plan of [one, other]) await page.getByRole('checkbox', { name: `${plan.blockName} ${plan.name}`, exact: true }).check();
+    await page.getByRole('button', { name: 'Find the order' }).click();
+    const order = page.getByRole('table', { name: 'A day over several blocks' });
+    await order.waitFor();
+    const before = await order.innerText();
+    await order.getByRole('button', { name: /^Walk .* earlier$/ }).click();
+    await page.waitForFunction((text) => document.querySelector('.day table')?.textContent !== text, before);
+    const first = (await order.getByRole('row').nth(1).innerText()).includes(one.blockName) ? one : other;
+    await page.locator('.send').getByText('Nuno Alvor').click();
+    await page.locator('.send').getByRole('button', { name: /^Send/ }).click();
+    await page.getByText('2 rounds sent, in this order.').waitFor();
+    await page.getByText(/block 1 of the day/).first().click();
+    const [sheet] = await download('Page of the day, A4');
+    const words = wordsOf([sheet!]);
+    expect(words).toContain('Nuno Alvor');
+    expect(words).toContain(first.blockName);
+    expect(words).toContain('On the way');
   });
 });

@@ -1,5 +1,5 @@
 import { estateSettings } from '../../../shared/contracts/estate.ts';
-import type { PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { FieldRound, FieldRow, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
@@ -21,6 +21,7 @@ import { Target } from '../../models/Target.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { measuresOfPlan, sampledZones } from '../plans/standingOfPlan.ts';
 import { vineWords } from '../plans/viewPlan.ts';
+import { dayStops } from './dayStops.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
 import type { RoundWalk, StoredStop } from './roundWalk.ts';
 
@@ -62,6 +63,7 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     restrictions: await restrictionViews(estateId, await EntryRestriction.query().where({ estateId, blockId: block.id }).where('endsAt', '>', now).orderBy('endsAt', 'desc'), now),
     lifters: (await peopleWhoMay(undefined, estateId, 'restrictions.lift')).map(({ name }) => name),
     checkedAt: now.toISOString(),
+    day: me ? await dayStops(estateId, { personId, onDate: round.onDate }) : [],
     acknowledgedAt: me?.acknowledgedAt?.toISOString() ?? null,
   };
 }

@@ -1,5 +1,5 @@
 import { reachOf } from '../../../shared/catalog/permissions.ts';
-import { planChoices } from '../../../shared/contracts/plans.ts';
+import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import type { RoundSummary } from '../../../shared/contracts/rounds.ts';
 import type { Access } from '../../access/access.ts';
 import { Block } from '../../models/Block.ts';
@@ -45,6 +45,7 @@ export async function listRounds(access: Access, filter: { planId?: string; bloc
       blockName: blocks.find(({ id }) => id === round.blockId)?.name ?? '',
       onDate: round.onDate,
       state: round.state,
+      dayPlace: round.dayPlace,
       gate: round.gate,
       notes: round.notes,
       people: shares.map((share) => ({

@@ -1,6 +1,6 @@
 import type { Transaction } from 'objection';
 import { may } from '../../../shared/catalog/permissions.ts';
-import type { PlanBasis } from '../../../shared/contracts/plans.ts';
+import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { NewRound } from '../../../shared/contracts/rounds.ts';
 import { toUtm } from '../../../shared/geo/utm.ts';
 import { dayBounds } from '../../../shared/season/dayBounds.ts';
@@ -8,6 +8,7 @@ import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
 import type { SharedRound, WalkShare } from '../../ground/shareRound.ts';
+import { loadTerrain } from '../../ground/terrain.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { EntryRestriction } from '../../models/EntryRestriction.ts';
@@ -23,8 +24,24 @@ import { loadPlanGround } from '../plans/planGround.ts';
 import { shareInputOf } from '../plans/walkInput.ts';
 import type { RoundWalk } from './roundWalk.ts';
 
+/** A round ready to be stored: people checked, the walk shared. */
+export interface PreparedRound {
+  plan: Plan;
+  input: NewRound;
+  people: Person[];
+  walk: RoundWalk;
+  vines: number;
+  day: { place: number; wayS: number | null } | null;
+}
+
 /** Sends a plan's vines to people for a day: the walk is shared so that loads are even, and each gets a mail. */
 export async function makeRound(access: Access, planId: string, input: NewRound, options: { publicUrl: string }): Promise<{ id: string }> {
+  const prepared = await prepareRound(access, planId, input, null);
+  return Round.transaction((trx) => storeRound(trx, access, prepared, options));
+}
+
+/** Checks plan and people and lays the walks; writes nothing. */
+export async function prepareRound(access: Access, planId: string, input: NewRound, day: PreparedRound['day']): Promise<PreparedRound> {
   const { estateId } = access;
   const plan = await Plan.query().findOne({ estateId, id: planId }).throwIfNotFound();
   if (plan.state === 'draft') throw new Clash('notLocked', `"${plan.name}" is a draft. Lock it, so that its vines stay as drawn, then send it.`);
@@ -32,19 +49,23 @@ export async function makeRound(access: Access, planId: string, input: NewRound,
   const people = await walkersOf(estateId, input.people);
   const targets = await Target.query().where({ estateId, planId }).orderBy('walkOrder');
   const shares = await sharesOf(access, plan, targets, { ...input, people: people.length });
-  return Round.transaction(async (trx) => {
-    const walk: RoundWalk = {
-      shares: people.map((person, i) => ({
-        personId: person.id, lengthM: shares[i]!.lengthM, walkingS: shares[i]!.walkingS, serviceS: shares[i]!.serviceS,
-        stops: shares[i]!.lines.map(({ target, number, enterBy, heading, ahead, aheadFrom, opensZone }) => ({ targetId: targets[target]!.id, number, enterBy, heading, ahead, aheadFrom, opensZone })),
-      })),
-    };
-    const round = await Round.query(trx).insert({ estateId, planId, blockId: plan.blockId, onDate: input.onDate, gate: input.gate, notes: input.notes, walk, createdBy: access.personId });
-    await RoundPerson.query(trx).insert(walk.shares.map(({ personId, stops }) => ({ estateId, roundId: round.id, personId, targetIds: stops.map(({ targetId }) => targetId) })));
-    await tell(trx, { access, plan, input, people, walk, link: `${options.publicUrl}/e/${estateId}/field/rounds/${round.id}` });
-    await writeAudit(trx, access, { action: 'rounds.send', subjectType: 'round', subjectId: round.id, subjectName: plan.name, after: { ...input, vines: targets.length } });
-    return { id: round.id };
-  });
+  const walk: RoundWalk = {
+    shares: people.map((person, i) => ({
+      personId: person.id, lengthM: shares[i]!.lengthM, walkingS: shares[i]!.walkingS, serviceS: shares[i]!.serviceS,
+      stops: shares[i]!.lines.map(({ target, number, enterBy, heading, ahead, aheadFrom, opensZone }) => ({ targetId: targets[target]!.id, number, enterBy, heading, ahead, aheadFrom, opensZone })),
+    })),
+  };
+  return { plan, input, people, walk, vines: targets.length, day };
+}
+
+/** Stores a prepared round with its mails and its line of history. */
+export async function storeRound(trx: Transaction, access: Access, { plan, input, people, walk, vines, day }: PreparedRound, options: { publicUrl: string }): Promise<{ id: string }> {
+  const { estateId } = access;
+  const round = await Round.query(trx).insert({ estateId, planId: plan.id, blockId: plan.blockId, onDate: input.onDate, gate: input.gate, notes: input.notes, walk, dayPlace: day?.place ?? null, wayS: day?.wayS ?? null, createdBy: access.personId });
+  await RoundPerson.query(trx).insert(walk.shares.map(({ personId, stops }) => ({ estateId, roundId: round.id, personId, targetIds: stops.map(({ targetId }) => targetId) })));
+  await tell(trx, { access, plan, input, people, walk, link: `${options.publicUrl}/e/${estateId}/field/rounds/${round.id}` });
+  await writeAudit(trx, access, { action: 'rounds.send', subjectType: 'round', subjectId: round.id, subjectName: plan.name, after: { ...input, vines, ...(day ? { dayPlace: day.place } : {}) } });
+  return { id: round.id };
 }
 
 /** The people of a round, in the order chosen; all must be allowed to record here. */
@@ -62,7 +83,7 @@ async function walkersOf(estateId: string, ids: string[]): Promise<Person[]> {
 async function sharesOf(access: Access, plan: Plan, targets: Target[], { people, gateAt, end }: { people: number } & Pick<NewRound, 'gateAt' | 'end'>): Promise<WalkShare[]> {
   const planGround = await loadPlanGround(access.estateId, plan.zoningId);
   const gateXY = gateAt === null ? planGround.gateXY : toUtm(gateAt, planGround.ground.block.epsg);
-  const { walks } = await runCompute<SharedRound>('shareRound', shareInputOf(planGround, plan, targets, { gateXY, people, end }), { lane: 'quick' });
+  const { walks } = await runCompute<SharedRound>('shareRound', shareInputOf(planGround, plan, targets, { gateXY, people, end, terrain: await loadTerrain(access.estateId, planGround.ground) }), { lane: 'quick' });
   return walks;
 }
 

@@ -2,10 +2,8 @@ import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { crewSheet, type SheetPart } from '../../exporters/crewSheet.ts';
 import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
-import { Block } from '../../models/Block.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Person } from '../../models/Person.ts';
-import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { fieldRound } from './fieldRound.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
@@ -20,17 +18,9 @@ export async function printSheet(access: Access, roundId: string, options: { pap
   const parts: SheetPart[] = [];
   for (const person of people) {
     const round = await fieldRound({ ...access, personId: person.id }, roundId, options.now);
-    parts.push({ round, person: person.name, language: person.language in sheetTexts ? (person.language as SheetLanguage) : 'en', alsoToday: await othersOfDay(estateId, { personId: person.id, roundId, onDate: round.onDate }) });
+    parts.push({ round, person: person.name, language: person.language in sheetTexts ? (person.language as SheetLanguage) : 'en' });
   }
   const first = parts[0]!.round;
   const body = await crewSheet(parts, { paper: options.paper, timeZone: estate.timeZone, link: `${options.publicUrl}/e/${estateId}/field/rounds/${roundId}` });
   return { name: `${first.blockName} ${first.onDate}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'), body };
-}
-
-/** What else a person walks that day, so that nobody goes home after the first block. */
-async function othersOfDay(estateId: string, of: { personId: string; roundId: string; onDate: string }): Promise<{ block: string; vines: number }[]> {
-  const mine = await RoundPerson.query().where({ estateId, personId: of.personId }).whereNot({ roundId: of.roundId });
-  const rounds = await Round.query().where({ estateId, onDate: of.onDate }).whereNot({ state: 'called off' }).findByIds(mine.map(({ roundId }) => roundId)).orderBy('createdAt');
-  const blocks = await Block.query().where({ estateId }).findByIds(rounds.map(({ blockId }) => blockId)).select('id', 'name');
-  return rounds.map(({ id, blockId }) => ({ block: blocks.find((block) => block.id === blockId)?.name ?? '', vines: mine.find(({ roundId }) => roundId === id)?.targetIds?.length ?? 0 }));
 }

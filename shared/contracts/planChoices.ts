@@ -115,8 +115,10 @@ export const basisQuestion = z.object({
   edgeRows: z.coerce.number().optional(),
   endVines: z.coerce.number().optional(),
   borderM: z.coerce.number().optional(),
-}).transform(({ edgeRows, endVines, borderM, ...spread }) => ({ spread, draw: { edgeRows, endVines, borderM } }))
-  .pipe(z.object({ spread: spreadChoices, draw: drawChoices }));
+}).transform(({ edgeRows, endVines, borderM, ...spread }) => {
+  const draw: z.input<typeof drawChoices> = { edgeRows, endVines, borderM };
+  return { spread, draw };
+}).pipe(z.object({ spread: spreadChoices, draw: drawChoices }));
 export type BasisChoices = Pick<PlanChoices, 'spread' | 'draw'>;
 
 const seed = z.number().int().min(0).max(2_147_483_647);

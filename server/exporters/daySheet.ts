@@ -6,7 +6,8 @@ import { paperLocale, sheetTexts, type SheetLanguage } from './sheetTexts.ts';
 export interface DayPart {
   person: string;
   language: SheetLanguage;
-  stops: readonly DayStop[];
+  /** `closed` says until when a block may not be entered, in the person's language. */
+  stops: readonly (DayStop & { closed: string | null })[];
 }
 
 export interface DaySheetOptions {
@@ -40,6 +41,7 @@ function drawPart(page: Page, { person, language, stops }: DayPart, options: Day
     doneS += (stop.wayS ?? 0) + stop.workS;
     if (stop.wayS !== null) wayLine(page, `${texts.way} ${minutes(stop.wayS)}`);
     drawStop(page, { stop, number: index + 1, words: [`${stop.vines} ${texts.vines}, ${minutes(stop.workS)}`, stop.gate && `${texts.start}: ${stop.gate}`, `${texts.doneAfter} ${minutes(doneS)}`] });
+    if (stop.closed !== null) page.font('Helvetica-Bold').fontSize(12).text(printable(stop.closed), margin + numberWidth, page.y - 10, { width: innerWidth(page) - numberWidth });
   });
   page.y += 14;
   page.font('Helvetica').fontSize(10).text(printable(`${texts.law} ${texts.meeting}: ${options.meetingPoint || '-'}. ${texts.emergency}: ${options.emergencyNumber || '-'}. ${texts.safety}`), margin, page.y, { width: innerWidth(page) });

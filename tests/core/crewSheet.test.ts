@@ -92,13 +92,13 @@ describe('the crew sheet', () => {
 
 describe('the page of a day', () => {
   it('gives each person the blocks in order, with ways, work and when each is done, on A4 and Letter', async () => {
-    const stops = [stopOfDay('r1', 'Millrace', 1), stopOfDay('r2', 'Marl', 2)];
+    const stops = [{ ...stopOfDay('r1', 'Millrace', 1), closed: null }, { ...stopOfDay('r2', 'Marl', 2), closed: 'DO NOT ENTER until Thu 20 Aug, 18:00 (Sulphur).' }];
     const body = (paper: 'a4' | 'letter') => daySheet([{ person: 'Nia Holt', language: 'en', stops }, { person: 'Teo Marsh', language: 'fr', stops: stops.slice(0, 1) }], { paper, estateName: 'Estate', onDate: '2026-08-20', meetingPoint: 'Press yard', emergencyNumber: '112', at: new Date('2026-08-19T08:00:00Z') });
     const pages = await readPdf(await body('a4'));
     expect(pages).toHaveLength(2);
     const [nia, teo] = pages.map(({ texts }) => texts.join(' ').replaceAll(/\s+/g, ' '));
     // 90 minutes; then 6 on the way and 90 more.
-    for (const words of ['Nia Holt', 'Thursday', '1 Millrace 48 vines, 1 h 30 min. Done after 1 h 30 min', 'On the way 6 min', '2 Marl 48 vines, 1 h 30 min. Done after 3 h 06 min', 'Emergency: 112']) expect(nia).toContain(words);
+    for (const words of ['Nia Holt', 'Thursday', '1 Millrace 48 vines, 1 h 30 min. Done after 1 h 30 min', 'On the way 6 min', '2 Marl 48 vines, 1 h 30 min. Done after 3 h 06 min', 'DO NOT ENTER until Thu 20 Aug, 18:00 (Sulphur)', 'Emergency: 112']) expect(nia).toContain(words);
     for (const words of ['Teo Marsh', 'jeudi', 'ceps', 'Urgence: 112']) expect(teo).toContain(words);
     const [letter] = await readPdf(await body('letter'));
     expect([letter!.width, letter!.height]).toEqual([612, 792]);

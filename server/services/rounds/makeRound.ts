@@ -3,15 +3,12 @@ import { may } from '../../../shared/catalog/permissions.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { NewRound } from '../../../shared/contracts/rounds.ts';
 import { toUtm } from '../../../shared/geo/utm.ts';
-import { dayBounds } from '../../../shared/season/dayBounds.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
-import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
 import type { SharedRound, WalkShare } from '../../ground/shareRound.ts';
 import { loadTerrain } from '../../ground/terrain.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
-import { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Membership } from '../../models/Membership.ts';
 import { Person } from '../../models/Person.ts';
@@ -22,6 +19,7 @@ import { Target } from '../../models/Target.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { loadPlanGround } from '../plans/planGround.ts';
 import { shareInputOf } from '../plans/walkInput.ts';
+import { closedWords, longestOn } from './closedOn.ts';
 import type { RoundWalk } from './roundWalk.ts';
 
 /** A round ready to be stored: people checked, the walk shared. */
@@ -108,15 +106,4 @@ async function tell(trx: Transaction, { access, plan, input, people, walk, link 
       facts: { estate: estate.name, block: basis.blockName, date, vines: walk.shares[i]!.stops.length, gate: input.gate || '–', link, notes: [closed && closedWords(closed, person.language, estate.timeZone), input.notes].filter(Boolean).join('\n\n') },
     });
   }
-}
-
-/** The restriction that ends last of those in force at some time of the estate’s day; which rows it concerns stands on sheet and phone. */
-async function longestOn(trx: Transaction, { estateId, blockId, day, timeZone }: { estateId: string; blockId: string; day: string; timeZone: string }): Promise<EntryRestriction | undefined> {
-  const { from, to } = dayBounds(timeZone, day);
-  return EntryRestriction.query(trx).where({ estateId, blockId }).whereNull('liftedAt').where('startsAt', '<', to).where('endsAt', '>', from).orderBy('endsAt', 'desc').first();
-}
-
-function closedWords({ endsAt, product }: EntryRestriction, language: string, timeZone: string): string {
-  const until = new Intl.DateTimeFormat(language, { timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(endsAt);
-  return `${sheetTexts[language as SheetLanguage].restricted} ${until} (${product}).`;
 }

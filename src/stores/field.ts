@@ -44,6 +44,8 @@ export const useFieldStore = defineStore('field', () => {
   const all = shallowRef<readonly Entry[]>([]);
   const waiting = ref(0);
   const others = ref(0);
+  /** What lies on the phone has been looked at; before that nothing is said of it. */
+  const isCounted = ref(false);
   const isSending = ref(false);
   const declinedPhotos = shallowRef<readonly KeptPhoto[]>([]);
   /** Rounds that were closed on this phone and of which the office does not know yet. */
@@ -62,11 +64,12 @@ export const useFieldStore = defineStore('field', () => {
   }
 
   async function count(): Promise<void> {
-    waiting.value = await totalWaiting(owner.personId);
-    others.value = await waitingOfOthers(owner.personId);
-    all.value = await allEntries(owner.personId);
-    declinedPhotos.value = await refusedPhotos(owner.personId);
-    closedHere.value = new Set((await closingsOf(owner.personId)).map(({ roundId }) => roundId));
+    const { personId } = owner;
+    const [mine, theirs, listed, declined, closings] = await Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), refusedPhotos(personId), closingsOf(personId)]);
+    // All at once: a count that runs ahead of its list would say that nothing waits beside what still does.
+    [waiting.value, others.value, all.value, declinedPhotos.value] = [mine, theirs, listed, declined];
+    closedHere.value = new Set(closings.map(({ roundId }) => roundId));
+    isCounted.value = true;
     if (round.value) await show(round.value.id);
   }
 
@@ -245,5 +248,5 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
 });

@@ -457,7 +457,7 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect((await state()).people.filter(({ finishedAt }) => finishedAt !== null)).toEqual([]);
     await context.unroute('**/api/**');
     await page.reload();
-    await expect.poll(async () => (await state()).people.filter(({ finishedAt }) => finishedAt !== null).map(({ name }) => name)).toEqual([names[1]]);
+    await expect.poll(async () => (await state()).people.filter(({ finishedAt }) => finishedAt !== null).map(({ name }) => name), { timeout: 30_000 }).toEqual([names[1]]);
     expect((await state()).state).toBe('open');
     await page.getByText('No work has been sent to you.').waitFor();
   });

@@ -9,6 +9,8 @@ export interface BandReading {
   /** Text of the no-data tag that is not a number. */
   badNoData: string | null;
   isPalette: boolean;
+  /** Unit of the first band as the file writes it. */
+  unit: string | null;
 }
 
 /** Scale, offset, name and no-data value of each band. The alpha band (ExtraSamples 1 or 2) is not a band of values. */
@@ -32,7 +34,7 @@ export function readBands(layout: RasterLayout, tags: GeoTags): BandReading {
       colour: colours[i] ?? null,
     };
   }).filter((band) => band.index !== alphaBand);
-  return { bands, alphaBand, badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null, isPalette: tags.photometric === 3 };
+  return { bands, alphaBand, badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null, isPalette: tags.photometric === 3, unit: items.find((item) => item.role === 'unittype' && item.sample === 0)?.text ?? null };
 }
 
 /** The no-data tag holds text. NaN needs no value of its own: NaN is always missing. Null: no usable value. */

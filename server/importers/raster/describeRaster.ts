@@ -55,7 +55,7 @@ export function describeOpen(raster: OpenRaster, options: RasterReadOptions): Ra
     isRotated: Math.abs(transform[2]) + Math.abs(transform[4]) > 1e-9 * (Math.abs(transform[1]) + Math.abs(transform[5])),
     compression: layout.compressionName,
     overviewFactors: raster.overviews.map((overview) => Math.round((10 * layout.width) / overview.width) / 10),
-    verticalUnit: verticalUnitOf(tags.geoKeys),
+    verticalUnit: verticalUnitOf(tags.geoKeys, bandNotes.unit),
     captured: /^\d{4}:\d\d:\d\d/.test(tags.dateTime ?? '') ? tags.dateTime!.slice(0, 10).replaceAll(':', '-') : null,
     questions,
     warnings,

@@ -22,10 +22,22 @@ export function bandWarnings({ raster, badNoData, isPalette }: Notes): ImportWar
   return warnings;
 }
 
-/** Unit of heights, when the file says (VerticalUnitsGeoKey). */
-export function verticalUnitOf(keys: Readonly<Record<string, unknown>> | null): RasterUnderstood['verticalUnit'] {
-  const unit = keys?.['VerticalUnitsGeoKey'];
-  if (unit === 9001) return 'metre';
-  if (unit === 9002) return 'foot';
-  return unit === 9003 ? 'US survey foot' : null;
+const unitCodes: Readonly<Record<number, RasterUnderstood['verticalUnit']>> = { 9001: 'metre', 9002: 'foot', 9003: 'US survey foot' };
+/** Usual height systems by their EPSG code (registry, from memory): NAVD 88 and NGVD 29 in feet; NAVD 88, EGM, European, Australian and national ones in metres. */
+const heightsInFeet: Readonly<Record<number, RasterUnderstood['verticalUnit']>> = { 6360: 'US survey foot', 5702: 'US survey foot', 6358: 'US survey foot', 8228: 'foot', 8050: 'foot', 8052: 'foot', 6130: 'foot' };
+const heightsInMetres = new Set([5703, 5714, 5773, 5798, 3855, 5621, 5730, 9389, 5701, 5709, 5710, 5711, 9458, 5720, 5783, 7837, 5782, 5705, 7839, 7700, 6647, 5713, 5728, 5729, 5778, 5214]);
+const unitNames: readonly (readonly [RegExp, RasterUnderstood['verticalUnit']])[] = [
+  [/^(us[ _-]?(survey[ _-]?)?(ft|foot|feet)|ft[ _-]?us|survey foot)$/i, 'US survey foot'],
+  [/^(ft|foot|feet|international foot)$/i, 'foot'],
+  [/^(m|met(er|re)s?)$/i, 'metre'],
+];
+
+/** Unit of heights, when the file says: by the unit of its band, the key for it, or the height system that it names. */
+export function verticalUnitOf(keys: Readonly<Record<string, unknown>> | null, bandUnit: string | null): RasterUnderstood['verticalUnit'] {
+  const named = unitNames.find(([pattern]) => pattern.test((bandUnit ?? '').trim()))?.[1];
+  if (named) return named;
+  const unit = unitCodes[Number(keys?.['VerticalUnitsGeoKey'])];
+  if (unit) return unit;
+  const system = Number(keys?.['VerticalGeoKey'] ?? keys?.['VerticalCSTypeGeoKey']);
+  return heightsInFeet[system] ?? (heightsInMetres.has(system) ? 'metre' : null);
 }

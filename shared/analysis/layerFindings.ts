@@ -93,7 +93,7 @@ type Check = (judged: Judged) => PlacedFinding | readonly PlacedFinding[] | null
 
 const checks: readonly Check[] = [
   ({ facts }) => (typeof facts.scaleTimes === 'number' ? { code: 'scale', severity: 'red', params: { times: facts.scaleTimes } } : null),
-  (judged) => (judged.stats.coverage >= enoughCoverage ? null : { code: 'partial', severity: 'red', params: { percent: Math.floor(judged.stats.coverage * 100), needed: enoughCoverage * 100 }, cells: emptyCells(judged) }),
+  (judged) => (judged.stats.coverage >= enoughCoverage ? null : { code: 'partial', severity: 'red', params: { percent: Math.min(enoughCoverage * 100 - 1, Math.round(judged.stats.coverage * 100)), needed: enoughCoverage * 100 }, cells: emptyCells(judged) }),
   (judged) => impossible(judged),
   ({ stats }) => (stats.n > 1 && isConstant(stats) ? { code: 'constant', severity: 'red', params: { value: stats.min! } } : null),
   (judged) => hidden(judged),

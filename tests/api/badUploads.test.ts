@@ -186,8 +186,14 @@ describe('a file that is doubtful is asked about, never guessed', () => {
     const columns = await agent.patch(`${base()}/imports/${id}`, { answers: { xColumn: 'a', yColumn: 'b' } });
     const swap = columns.body.questions.find((each: { code: string }) => each.code === 'swapAxes');
     expect(swap, JSON.stringify(columns.body.questions)).toMatchObject({ answered: false });
+    // Both answers come with the positions as they would lie: the right one on the block, reading by reading.
+    const sample = swap.choices.find((choice: { value: boolean }) => choice.value).sampleLonLat as [number, number][];
+    expect(sample).toHaveLength(40);
+    expect(sample[10]![0]).toBeCloseTo(lonLatAt(20, 10)[0], 5);
+    expect(sample[10]![1]).toBeCloseTo(lonLatAt(20, 10)[1], 5);
     const swapped = await agent.patch(`${base()}/imports/${id}`, { answers: { swapAxes: true } });
     expect(swapped.body.covers).toMatchObject([{ name: 'Stone Piece' }]);
+    expect(swapped.body.questions.find((each: { code: string }) => each.code === 'swapAxes').choices[0].sampleLonLat).toBeUndefined();
   });
 
   it('a layer that turns out to have no values on the blocks is refused with the reason, and can be answered anew', async () => {

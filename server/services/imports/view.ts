@@ -3,7 +3,7 @@ import { groupBy } from '../../../shared/groupBy.ts';
 import type { ImportQuestion, ImportView } from '../../../shared/contracts/imports.ts';
 import { importQuestions } from '../../../shared/importing/questions.ts';
 import type { Access } from '../../access/access.ts';
-import { FileImport } from '../../models/FileImport.ts';
+import { FileImport, type ImportMemory } from '../../models/FileImport.ts';
 import { Job } from '../../models/Job.ts';
 import { Layer } from '../../models/Layer.ts';
 import { Person } from '../../models/Person.ts';
@@ -44,8 +44,8 @@ export async function viewsOf(access: Access, records: FileImport[]): Promise<Im
       format: record.format,
       // A placing that somebody stopped leaves the answers open to change.
       state: record.state === 'ready' && jobs.get(record.id)?.state === 'cancelled' ? 'asks' : record.state,
-      understood: record.understood.file,
-      questions: record.state === 'refused' && record.fileId === null ? [] : questionsOf(record),
+      understood: record.state === 'done' ? withoutSample(record.understood.file) : record.understood.file,
+      questions: record.state === 'refused' && record.fileId === null ? [] : questionsOf(record).map(settledBare),
       notes: record.warnings,
       problem: record.problem,
       covers: covers.get(record.id) ?? [],
@@ -63,6 +63,17 @@ export function questionsOf(record: Pick<FileImport, 'understood' | 'answers' | 
   const { file, asked } = record.understood;
   if (asked.some((question) => !question.answered) || file === null) return asked;
   return [...asked, ...importQuestions({ file, fileName: record.fileName, answers: record.answers })];
+}
+
+/** Positions are drawn while somebody must judge a placing; a list of two hundred lines should not carry them for ever. */
+function settledBare(question: ImportQuestion): ImportQuestion {
+  return question.answered ? { ...question, choices: question.choices.map(({ sampleLonLat: _, ...choice }) => choice) } : question;
+}
+
+function withoutSample(file: ImportMemory['file']): ImportMemory['file'] {
+  if (file === null || file.sampleLonLat === undefined) return file;
+  const { sampleLonLat: _, ...rest } = file;
+  return rest;
 }
 
 async function coversOf(estateId: string, records: readonly FileImport[]): Promise<Map<string, Covered[]>> {

@@ -1,4 +1,4 @@
-import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
+import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
 /** What every format of zones is written from: plain facts, no rows of the database. */
 export interface ZoneExport {
@@ -34,4 +34,6 @@ export interface ExportedRun {
   toVine: number;
   zone: number;
   zoneName: string;
+  /** The stretch of row that belongs to the vines. */
+  linesLonLat: readonly (readonly LonLat[])[];
 }

@@ -114,7 +114,7 @@ const operations: Operation[] = [
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/walk', summary: 'The walk past the vines from a gate, shared among people, as lines on the map', answer: planWalk },
   { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/standing', summary: 'How far each zone is with what was read: enough here, or so many more', answer: z.object({ items: z.array(planStanding) }) },
   { method: 'post', path: '/api/estates/{estateId}/zonings/{zoningId}/divisions', summary: 'Zones that a plan asks too much of, divided where their readings say that this saves work', body: divisionQuestion, answer: z.object({ items: z.array(zoneDivision) }) },
-  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/export', summary: 'The vines of a plan as a file (format=csv or gpx)' },
+  { method: 'get', path: '/api/estates/{estateId}/plans/{planId}/export', summary: 'The vines of a plan as a file (format=csv, gpx, geojson, shapefile, geopackage or kml)' },
   { method: 'post', path: '/api/estates/{estateId}/plans/day/rounds', summary: 'Send the plans of several blocks to the same people as one day, in order', body: newDay },
   { method: 'get', path: '/api/estates/{estateId}/rounds/day-sheet', summary: 'The order of everybody’s blocks on a day as PDF, a page a person; crew their own' },
   { method: 'post', path: '/api/estates/{estateId}/plans/{planId}/rounds', summary: 'Send the vines of a plan to people for a day', body: newRound },

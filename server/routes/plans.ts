@@ -7,7 +7,7 @@ import { dayQuestion, walkQuestion } from '../../shared/contracts/planWalks.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { dayOfPlans } from '../services/plans/dayOfPlans.ts';
 import { divisionsOf } from '../services/plans/divisions.ts';
-import { exportPlan } from '../services/plans/exportPlan.ts';
+import { exportPlan, planFormats } from '../services/plans/exportPlan.ts';
 import { planBasisOf } from '../services/plans/planBasis.ts';
 import { listPlans, plannableZonings, viewPlan } from '../services/plans/viewPlan.ts';
 import { standingOfPlan } from '../services/plans/standingOfPlan.ts';
@@ -15,7 +15,7 @@ import { walkOfPlan } from '../services/plans/walkOfPlan.ts';
 import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
 
 const filter = z.object({ block: id.optional() });
-const exportQuery = z.object({ format: z.enum(['csv', 'gpx']) });
+const exportQuery = z.object({ format: z.enum(Object.keys(planFormats) as [keyof typeof planFormats]) });
 
 /** Sampling plans: how many vines, which, and what walk. */
 export function planRoutes(): Router {

@@ -88,6 +88,18 @@ export function pointOnPiece(piece: PieceXY, distanceM: number): XY {
   return piece.toXY;
 }
 
+/** The line along a piece from one distance from its start end to another, with the bends between them. */
+export function pathOnPiece(piece: PieceXY, fromM: number, toM: number): XY[] {
+  let reached = 0;
+  let last = piece.fromXY;
+  const between = piece.bendsXY.filter((bend) => {
+    reached += Math.hypot(bend[0] - last[0], bend[1] - last[1]);
+    last = bend;
+    return reached > fromM && reached < toM;
+  });
+  return [pointOnPiece(piece, fromM), ...between, pointOnPiece(piece, toM)];
+}
+
 function between(from: XY, to: XY, share: number): XY {
   return [from[0] + (to[0] - from[0]) * share, from[1] + (to[1] - from[1]) * share];
 }

@@ -32,7 +32,7 @@ export const useSamplingStore = defineStore('sampling', () => {
   const change = (estateId: string, planId: string, changed: PlanChange) => http.patch<PlanView>(`${base(estateId)}/plans/${planId}`, changed);
   const lock = (estateId: string, planId: string) => http.post<PlanView>(`${base(estateId)}/plans/${planId}/lock`);
   const redraw = (estateId: string, planId: string, reason: string) => http.post<PlanView>(`${base(estateId)}/plans/${planId}/redraw`, { reason });
-  const download = (estateId: string, planId: string, format: 'csv' | 'gpx') => http.download(`${base(estateId)}/plans/${planId}/export`, `plan.${format}`, { query: { format } });
+  const download = (estateId: string, planId: string, format: string) => http.download(`${base(estateId)}/plans/${planId}/export`, `plan.${format}`, { query: { format } });
 
   const divisions = (estateId: string, zoningId: string, choices: PlanChoices) => http.post<Listed<ZoneDivision>>(`${base(estateId)}/zonings/${zoningId}/divisions`, { choices });
   const walk = (estateId: string, planId: string, asked: { people: number; end: 'gate' | 'anywhere'; gate: string | null }) => http.get<PlanWalk>(`${base(estateId)}/plans/${planId}/walk`, { query: asked });

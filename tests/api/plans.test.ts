@@ -1,9 +1,14 @@
 import { randomUUID } from 'node:crypto';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import type { FeatureCollection, MultiPoint, Point } from 'geojson';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import type { PlanView } from '../../shared/contracts/plans.ts';
 import { planChoices } from '../../shared/contracts/planChoices.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
+import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
@@ -15,6 +20,7 @@ import { Quota } from '../../server/models/Quota.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
 import { Vine } from '../../server/models/Vine.ts';
+import { hasTool, readWithGdal } from './support/gdal.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
@@ -176,6 +182,33 @@ describe('a plan', () => {
     expect((gpx.body as string).match(/<wpt /g)).toHaveLength(78);
     expect(gpx.body).toContain('=Plan &amp; co');
     expect((await manager.get(`${base()}/plans/${made.id}/export?format=docx`)).status).toBe(422);
+  });
+
+  it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL in every format of points, each vine within a centimetre and in its order', async () => {
+    await MeasureRecord.query().where({ estateId: estate.estateId, code: 'clusterCount' }).patch({ inUse: true });
+    const made = await plan({ name: 'Côte à l’Éperon' });
+    const folder = mkdtempSync(join(tmpdir(), 'patchrow-plan-'));
+    const titles = { gpx: 'name', geojson: 'walk_order', shapefile: 'WALK_ORDER', geopackage: 'walk_order', kml: 'Name' };
+    for (const [format, title] of Object.entries(titles)) {
+      const { body, status } = await manager.get(`${base()}/plans/${made.id}/export?format=${format}`).buffer(true).parse((response, done) => {
+        const parts: Buffer[] = [];
+        response.on('data', (part: Buffer) => parts.push(part));
+        response.on('end', () => done(null, Buffer.concat(parts)));
+      });
+      expect(status).toBe(200);
+      const file = join(folder, `targets.${format === 'shapefile' ? 'zip' : format === 'geopackage' ? 'gpkg' : format}`);
+      writeFileSync(file, body as Buffer);
+      const read = readWithGdal<FeatureCollection<Point | MultiPoint>>(format === 'shapefile' ? `/vsizip/${file}/targets.shp` : file, format === 'gpx' ? 'waypoints' : undefined);
+      expect(read.features, format).toHaveLength(made.targets.length);
+      read.features.forEach(({ geometry, properties }, at) => {
+        const target = made.targets[at]!;
+        const [lon, lat] = (geometry.type === 'Point' ? geometry.coordinates : geometry.coordinates[0]) as [number, number];
+        const [[[[x, y], [u, v]]]] = polygonsToUtm([[[[lon, lat], [target.position[0], target.position[1]]]]], 32630) as unknown as [[[[number, number], [number, number]]]];
+        expect(Math.hypot(x - u, y - v), format).toBeLessThan(0.01);
+        expect(String(properties![title]).split(' ')[0], format).toBe(String(target.walkOrder));
+      });
+    }
+    rmSync(folder, { recursive: true, force: true });
   });
 });
 

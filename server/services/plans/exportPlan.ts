@@ -1,18 +1,33 @@
 import type { PlanView } from '../../../shared/contracts/plans.ts';
 import type { Access } from '../../access/access.ts';
+import { geoJsonOf } from '../../exporters/features/geoJson.ts';
+import { geoPackageOf } from '../../exporters/features/geoPackage.ts';
+import { kmlOf } from '../../exporters/features/kml.ts';
+import { shapefileOf } from '../../exporters/features/shapefile.ts';
+import { planFeatures } from '../../exporters/planFeatures.ts';
 import { planGpx } from '../../exporters/planGpx.ts';
 import { planTable } from '../../exporters/planTable.ts';
 import { viewPlan } from './viewPlan.ts';
 
+interface PlanFormat {
+  type: string;
+  extension: string;
+  write: (plan: PlanView) => string | Buffer | Promise<Buffer>;
+}
+
 /** Formats a plan leaves in; another is a row here. */
-const formats = {
-  csv: { type: 'text/csv; charset=utf-8', write: planTable },
-  gpx: { type: 'application/gpx+xml; charset=utf-8', write: planGpx },
-} satisfies Record<string, { type: string; write: (plan: PlanView) => string }>;
+export const planFormats = {
+  csv: { type: 'text/csv; charset=utf-8', extension: 'csv', write: planTable },
+  gpx: { type: 'application/gpx+xml; charset=utf-8', extension: 'gpx', write: planGpx },
+  geojson: { type: 'application/geo+json', extension: 'geojson', write: (plan) => geoJsonOf(planFeatures(plan)) },
+  shapefile: { type: 'application/zip', extension: 'zip', write: (plan) => shapefileOf(planFeatures(plan)) },
+  geopackage: { type: 'application/geopackage+sqlite3', extension: 'gpkg', write: (plan) => geoPackageOf([planFeatures(plan)]) },
+  kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), ({ values: [order, , , , row, vine] }) => ({ label: `${order ?? ''} R${row} V${vine}`.trim(), colour: null })) },
+} satisfies Record<string, PlanFormat>;
 
 /** The vines of a plan as a file. */
-export async function exportPlan(access: Access, planId: string, format: keyof typeof formats): Promise<{ name: string; type: string; body: string }> {
+export async function exportPlan(access: Access, planId: string, format: keyof typeof planFormats): Promise<{ name: string; type: string; body: string | Buffer }> {
   const plan = await viewPlan(access, planId);
-  const { type, write } = formats[format];
-  return { name: `${plan.blockName} ${plan.name}.${format}`.replace(/[\\/:*?"<>|]+/g, '-'), type, body: write(plan) };
+  const { type, extension, write }: PlanFormat = planFormats[format];
+  return { name: `${plan.blockName} ${plan.name}.${extension}`.replace(/[\\/:*?"<>|]+/g, '-'), type, body: await write(plan) };
 }

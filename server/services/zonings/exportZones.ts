@@ -1,7 +1,9 @@
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import type { ExportFormatLine, ZoningView } from '../../../shared/contracts/zonings.ts';
-import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
+import { fromUtm } from '../../../shared/geo/utm.ts';
+import { pathOnPiece } from '../../../shared/geo/vines.ts';
 import { decodeFloatCells, encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
@@ -28,7 +30,7 @@ export async function exportZones(access: Access, zoningId: string, asked: { for
   const input = await exportInput(access, zoningId, { zones: asked.zones, withLayers: format.withLayers === true });
   const body = await format.write(input);
   await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
-  return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.withLayers ? ['layers'] : [])], format.extension), type: format.mediaType, body };
+  return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.about ? [format.about] : [])], format.extension), type: format.mediaType, body };
 }
 
 async function exportInput(access: Access, zoningId: string, { zones, withLayers }: { zones: number | null; withLayers: boolean }): Promise<ZoneExport> {
@@ -60,6 +62,17 @@ function runsOf(ground: BlockVines, zones: readonly ExportedZone[], labels: Uint
     .filter(({ label }) => label > 0)
     .map(({ rowIndex, fromOrdinal, toOrdinal, label }) => {
       const ends = [fromOrdinal, toOrdinal].map((ordinal) => vineLabel(ground.rows.rows[rowIndex]!, ordinal, ground.block.vineOneEnd));
-      return { rowLabel: ground.stored[rowIndex]!.label, fromVine: Math.min(...ends), toVine: Math.max(...ends), zone: label, zoneName: zones.find(({ number }) => number === label)?.name ?? '' };
+      return { rowLabel: ground.stored[rowIndex]!.label, fromVine: Math.min(...ends), toVine: Math.max(...ends), linesLonLat: stretches(ground, rowIndex, { fromOrdinal, toOrdinal }), zone: label, zoneName: zones.find(({ number }) => number === label)?.name ?? '' };
     });
+}
+
+/** The ground of a run along its row: from half a vine before its first to half a vine after its last, a line for each piece of the row. */
+function stretches(ground: BlockVines, rowIndex: number, { fromOrdinal, toOrdinal }: { fromOrdinal: number; toOrdinal: number }): LonLat[][] {
+  return ground.rows.rows[rowIndex]!.pieces.flatMap((piece) => {
+    const [first, last] = [Math.max(fromOrdinal, piece.firstVine), Math.min(toOrdinal, piece.firstVine + piece.vineCount - 1)];
+    if (first > last) return [];
+    const along = (ordinal: number) => piece.firstVineM + (ordinal - piece.firstVine) * piece.stepM;
+    const path = pathOnPiece(piece, Math.max(0, along(first) - piece.stepM / 2), Math.min(piece.lengthM, along(last) + piece.stepM / 2));
+    return [path.map((point) => fromUtm(point, ground.block.epsg))];
+  });
 }

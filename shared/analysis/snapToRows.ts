@@ -9,6 +9,9 @@ import { NearestPoints } from '../geo/vinesNearest.ts';
 import { cellCentre, type GridFrame, type Labels } from './grid.ts';
 import { cheapestZone, cutIntoRuns, membershipCosts, wrongVineCosts, type ZoneCosts } from './snapToRowsProgramme.ts';
 
+/** Vines wrong for one border more: a run shorter than about two panels is not worth its two borders (judgement). */
+export const CUT_PENALTY = 4;
+
 export type SnapMode = 'wholeRow' | 'partRow';
 
 export interface SnapOptions {

@@ -2,10 +2,11 @@
  * Plateaus and steps, or only a slope? k-means on the calm cells of the block is compared with k-means on the calm cells of
  * random fields that vary as smoothly but hold no zones. Gap(k) = mean over the fields of ln(W_k/W_1) minus the block's own:
  * the gap statistic (Tibshirani, Walther & Hastie 2001) with covariance-matched fields in place of a uniform reference.
- * In: evidence field. Out: per k the gap, within shares and Calinski–Harabasz. Cost: for each of 20 fields one transform a
+ * In: evidence field. Out: per k the gap, within shares, Calinski–Harabasz and how well the weakest zone holds. Cost: for each of 20 fields one transform a
  * layer and a few k-means runs of up to 1 000 points.
  */
 
+import { weakestHold } from './clusterHold.ts';
 import { surrogateFields, surrogateModel } from './covarianceSurrogates.ts';
 import { quickInertias } from './kmeans.ts';
 import { sampleIndices, type PointTable } from './kmeansPoints.ts';
@@ -15,8 +16,13 @@ import type { EvidenceField } from './verdictField.ts';
 
 export const MOST_ZONES = 6;
 
+/** Calm cells that are asked whether zones hold. */
+const HELD_CELLS = 600;
+
 export interface GapOptions {
   readonly random: Random;
+  /** Width of the patches that zones must come back from when they are drawn anew, with a random stream of its own. */
+  readonly hold: { readonly patchM: number; readonly random: Random };
   /** Random fields compared with; they come in pairs. */
   readonly surrogates?: number;
   /** Calm cells that enter each k-means. */
@@ -34,14 +40,21 @@ export interface GapAtK {
   readonly gapSd: number;
   /** Calinski–Harabasz on the calm cells. */
   readonly separation: number;
+  /** How well the weakest of k zones comes back when patches of ground are drawn anew, 0…1 (see clusterHold). */
+  readonly holds: number;
 }
 
 /** One row for each k = 2…6. */
 export function gapCurve(field: EvidenceField, options: GapOptions): GapAtK[] {
-  const { random, surrogates = 20, sampleCount = 1000, restarts = 1 } = options;
+  const { random, hold, surrogates = 20, sampleCount = 1000, restarts = 1 } = options;
   const finder = calmFinder(field, { cellSizeM: field.cellSizeM });
-  const logsOf = (layers: readonly Float64Array[]) => logWithinShares(sampled(layers, finder.find(layers), { sampleCount, random }), restarts, random);
-  const own = logsOf(field.layers);
+  const logsOf = (layers: readonly Float64Array[]) => logWithinShares(pointsAt(layers, sampledCells(finder.find(layers), { sampleCount, random })), restarts, random);
+  const cells = sampledCells(finder.find(field.layers), { sampleCount, random });
+  const points = pointsAt(field.layers, cells);
+  const own = logWithinShares(points, restarts, random);
+  const held = sampledCells(cells, { sampleCount: HELD_CELLS, random: hold.random });
+  const heldPoints = pointsAt(field.layers, held);
+  const patches = patchesOf(held, field, hold.patchM);
   const references: (readonly number[])[] = [];
   for (const layers of surrogateFields(surrogateModel(field, field.layers), surrogates, random)) references.push(logsOf(layers).logs);
   return own.logs.map((log, i) => {
@@ -49,7 +62,7 @@ export function gapCurve(field: EvidenceField, options: GapOptions): GapAtK[] {
     const mean = references.reduce((sum, logs) => sum + logs[i]!, 0) / references.length;
     const squares = references.reduce((sum, logs) => sum + (logs[i]! - mean) ** 2, 0);
     const withinShare = Math.exp(log);
-    return { k, withinShare, gap: mean - log, gapSd: Math.sqrt(squares / (references.length - 1)), separation: (1 - withinShare) / (k - 1) / (withinShare / (own.count - k)) };
+    return { k, withinShare, gap: mean - log, gapSd: Math.sqrt(squares / (references.length - 1)), separation: (1 - withinShare) / (k - 1) / (withinShare / (own.count - k)), holds: weakestHold(heldPoints, patches, { k, random: hold.random }) };
   });
 }
 
@@ -58,15 +71,24 @@ interface SampleOptions {
   readonly random: Random;
 }
 
-/** A random part of the given cells as points. */
-function sampled(layers: readonly Float64Array[], cells: Uint32Array, { sampleCount, random }: SampleOptions): PointTable {
-  const chosen = sampleIndices(cells.length, sampleCount, random);
-  const values = new Float64Array(chosen.length * layers.length);
-  for (let point = 0; point < chosen.length; point++) {
-    const cell = cells[chosen[point]!]!;
-    for (let l = 0; l < layers.length; l++) values[point * layers.length + l] = layers[l]![cell]!;
+/** A random part of the given cells. */
+function sampledCells(cells: Uint32Array, { sampleCount, random }: SampleOptions): Uint32Array {
+  return sampleIndices(cells.length, sampleCount, random).map((at) => cells[at]!);
+}
+
+function pointsAt(layers: readonly Float64Array[], cells: Uint32Array): PointTable {
+  const values = new Float64Array(cells.length * layers.length);
+  for (let point = 0; point < cells.length; point++) {
+    for (let l = 0; l < layers.length; l++) values[point * layers.length + l] = layers[l]![cells[point]!]!;
   }
-  return { values, count: chosen.length, dimensions: layers.length };
+  return { values, count: cells.length, dimensions: layers.length };
+}
+
+/** The square of ground that each cell lies in, by a number of its own. */
+function patchesOf(cells: Uint32Array, { width, cellSizeM }: EvidenceField, patchM: number): Uint32Array {
+  const side = patchM / cellSizeM;
+  const across = Math.ceil(width / side);
+  return cells.map((cell) => Math.floor(Math.floor(cell / width) / side) * across + Math.floor((cell % width) / side));
 }
 
 /** ln(W_k / W_1) for k = 2…6. Six different values at 0, .1, .2, 5, 5.1, 5.2 give −6.844 for two zones. */

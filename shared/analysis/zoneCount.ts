@@ -1,16 +1,20 @@
 /**
- * How many zones? The number where the zones are best separated on the calm cells and at the same time furthest beyond what
- * random fields of the same smoothness show: the largest ln(Calinski–Harabasz) + gap. With one layer the gap alone, because
- * Calinski–Harabasz keeps growing with k there. Readings of fruit do not choose the number: they moved no choice for the
- * better in simulation. Sources: Calinski & Harabasz 1974; Tibshirani, Walther & Hastie 2001; see verdictGap.
+ * How many zones? Of the numbers whose every zone can be trusted, the one where the zones are best separated on the calm cells and at
+ * the same time furthest beyond what random fields of the same smoothness show: the largest ln(Calinski–Harabasz) + gap. With
+ * one layer the gap alone, because Calinski–Harabasz keeps growing with k there. A zone can be trusted when it comes back
+ * from ground drawn anew (see clusterHold): scores of neighbouring numbers often differ by less than chance, and a zone that is there or
+ * not by which ground was looked at cannot be worked. Where no number can be trusted, all are weighed. Readings of fruit do not choose
+ * the number: they moved no choice for the better in simulation.
+ * Sources: Calinski & Harabasz 1974; Tibshirani, Walther & Hastie 2001; Hennig 2007; see verdictGap and clusterHold.
  */
 
+import { STABLE_FROM, TRUSTED_FROM } from './clusterHold.ts';
 import type { GapAtK } from './verdictGap.ts';
 
 export interface ZoneCountAdvice {
   /** Best number of zones from 2 to 6; whether more than one is worth it is for the verdict to say. */
   readonly best: number;
-  /** Neighbouring numbers whose score is so close that they deserve a look. */
+  /** Numbers that deserve a look beside it: neighbours with nearly its score, or with stable zones where it has none; and the highest score of all where a zone of it cannot be trusted. */
   readonly alsoOffer: readonly number[];
   readonly scores: readonly { readonly k: number; readonly score: number }[];
 }
@@ -26,10 +30,18 @@ export interface ZoneCountInput {
 
 /** A tie goes to the smaller number: fewer zones are less work in the field. */
 export function adviseZoneCount({ curve, layerCount, workable }: ZoneCountInput): ZoneCountAdvice {
-  const scores = curve.map(({ k, gap, separation }) => ({ k, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
-  const choice = scores.filter(({ k }) => workable.includes(k));
+  const rows = curve.map(({ k, gap, separation, holds }) => ({ k, holds, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
+  const scores = rows.map(({ k, score }) => ({ k, score }));
+  const choice = rows.filter(({ k }) => workable.includes(k));
   if (choice.length === 0) return { best: workable[0] ?? 2, alsoOffer: [], scores };
-  const best = choice.reduce((most, row) => (row.score > most.score ? row : most));
-  const alsoOffer = choice.filter((row) => Math.abs(row.k - best.k) === 1 && best.score - row.score <= CLOSE_SCORE).map((row) => row.k);
-  return { best: best.k, alsoOffer, scores };
+  const trusted = choice.filter(({ holds }) => holds >= TRUSTED_FROM);
+  const best = highest(trusted.length > 0 ? trusted : choice);
+  const close = choice.filter((row) => Math.abs(row.k - best.k) === 1 && row.score <= best.score && best.score - row.score <= CLOSE_SCORE);
+  const steadier = choice.filter((row) => Math.abs(row.k - best.k) === 1 && best.holds < STABLE_FROM && row.holds >= STABLE_FROM);
+  const unsteady = [highest(choice)].filter((row) => row !== best);
+  return { best: best.k, alsoOffer: [...new Set([...close, ...steadier, ...unsteady].map(({ k }) => k))].sort((a, b) => a - b), scores };
+}
+
+function highest<Row extends { readonly score: number }>(rows: readonly Row[]): Row {
+  return rows.reduce((most, row) => (row.score > most.score ? row : most));
 }

@@ -11,6 +11,7 @@ import { adviseLayers, compareEdges, edgeTask, withEdges, type EdgeTask, type La
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import { polygonise } from './polygonise.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
+import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
 import { adviseZoneCount } from './zoneCount.ts';
 import { cleanZones } from './zoningClean.ts';
 import { evidenceTask, weighEvidence, type EvidenceTask, type ZoningEvidence } from './zoningEvidence.ts';
@@ -24,7 +25,7 @@ import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
 import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '2';
+export const ENGINE_VERSION = '3';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
@@ -102,10 +103,11 @@ export interface ZoningParts {
 /** Number of zones, polygons and figures from what was made and found. */
 export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
   const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
-  const count = adviseZoneCount({ ...evidence, workable: workableNumbers(cleaned) });
+  const own = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
+  // A zone that one of several blocks lacks is no less a zone.
+  const count = adviseZoneCount({ ...evidence, workable: workableNumbers(input.together?.length ? cleaned : own) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
-  const own = cleaned.map(stacked.ownPart);
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
   const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
@@ -116,6 +118,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   return {
     engineVersion: ENGINE_VERSION,
     gridKey: input.grid.key,
+    cellSizeM: stacked.grid.cellSizeM,
     options,
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
     advisedWeights: withEdges(ground.advised, edges),
@@ -130,6 +133,12 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     componentShares: table.componentShares,
     warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table })],
   };
+}
+
+/** The zones with their borders along the rows, if that was asked for; doubts stay where they are. */
+function alongRows(zones: CellZones, { input: { grid, planting }, options: { borders } }: ZoningGround): CellZones {
+  if (borders === 'free' || !planting) return zones;
+  return { ...zones, labels: snapToRows({ grid, labels: zones.labels, ...planting }, { mode: borders, cutPenalty: CUT_PENALTY }).cellLabels };
 }
 
 /** The readings with the zone each lies in; those outside the zones are left out. */

@@ -17,6 +17,7 @@ const MOST_GAP_CELLS = 2500;
 /** Structure at one patch width is measured with at least so many cells to the patch. */
 const CELLS_PER_PATCH = 4;
 const EVIDENCE_STREAM = 20;
+const HOLD_STREAM = 21;
 
 export interface EvidenceInput {
   readonly grid: Grid;
@@ -60,7 +61,7 @@ export function evidenceTask({ grid, layers, weights, areaM2, seed }: EvidenceIn
 }
 
 export function weighEvidence({ areaM2, seed, gapField, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
-  const curve = gapField === null ? [] : gapCurve(gapField, { random: streamOf(seed, EVIDENCE_STREAM) });
+  const curve = gapField === null ? [] : gapCurve(gapField, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
   const structures = structureField === null ? [] : layerStructures(structureField, areaM2);
   return { verdict: judge({ areaM2, layerIds: measuredIds, structures, curve }), curve, layerCount: gapField?.layers.length ?? 0 };
 }

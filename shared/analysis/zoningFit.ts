@@ -166,7 +166,7 @@ function nearestByKnown(columns: readonly Float32Array[], means: readonly Float6
 }
 
 /** Cells inside without a zone take the zone of the nearest labelled cell, by steps to the four sides. */
-function withGapsFilled({ cols, inside }: Grid, labels: Uint8Array): Uint8Array {
+export function withGapsFilled({ cols, inside }: Grid, labels: Uint8Array): Uint8Array {
   let open = Int32Array.from(inside.keys()).filter((cell) => inside[cell] === 1 && labels[cell] === 0);
   let filled = labels;
   while (open.length > 0) {

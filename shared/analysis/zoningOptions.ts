@@ -11,13 +11,14 @@ export const defaultZoningOptions: ZoningOptions = {
   smoothingM: 3,
   smallestPatchHa: 0.05,
   narrowestM: 0,
+  borders: 'free',
   principalComponents: false,
   seed: 1,
   drawAll: false,
 };
 
 /** Defaults filled in and every option checked; layers and readings are checked against the grid. */
-export function checkedOptions({ grid, layers, options = {}, readings = [], together = [] }: ZoningInput): ZoningOptions {
+export function checkedOptions({ grid, layers, options = {}, readings = [], together = [], planting }: ZoningInput): ZoningOptions {
   const all = { ...defaultZoningOptions, ...options };
   if (all.zones !== 'advise' && !(Number.isInteger(all.zones) && all.zones >= 1 && all.zones <= MOST_ZONES)) {
     throw new AnalysisError('zones', `${all.zones} zones cannot be made; ask for advise or a whole number from 1 to ${MOST_ZONES}.`);
@@ -25,6 +26,7 @@ export function checkedOptions({ grid, layers, options = {}, readings = [], toge
   if (!(all.smoothingM >= 0 && all.smoothingM <= 50)) throw new AnalysisError('smoothing', `A smoothing of ${all.smoothingM} m cannot be used; give 0 to 50 m.`);
   if (!(all.smallestPatchHa >= 0)) throw new AnalysisError('smallest-patch', `A smallest patch of ${all.smallestPatchHa} ha cannot be used; give 0 or more.`);
   if (!(all.narrowestM >= 0 && all.narrowestM <= 200)) throw new AnalysisError('narrowest', `A narrowest part of ${all.narrowestM} m cannot be used; give 0 to 200 m.`);
+  if (all.borders !== 'free' && !(planting && planting.vines.count > 0)) throw new AnalysisError('no-rows', 'Borders cannot follow the rows while the block has none; lay out its rows, or leave the borders free.');
   if (!Number.isInteger(all.seed)) throw new AnalysisError('seed', `The seed ${all.seed} cannot be used; give a whole number.`);
   if (layers.length === 0) throw new AnalysisError('no-layer', 'No layer was chosen; choose at least one.');
   const ids = new Set<string>();

@@ -1,12 +1,13 @@
 /**
  * Several blocks zoned as one, so that zones of one number are of one kind in all of them. Their grids are stacked in one plane,
  * so far apart that neither smoothing nor any comparison at a distance reaches from one to the next; what comes out is cut
- * apart again. In: the block itself and the others. Out: one grid with its layers and readings, and the place of the block.
+ * apart again. Where their cells differ in size, all are looked at in the coarsest. In: the block itself and the others. Out: one grid with its layers and readings, and the place of the block.
  * The order is that of the grids' names, so each of the blocks gets the same outcome whichever asks. Cost: a copy of the cells.
  */
 
 import type { MultiPolygonXY } from '../geo/coordinates.ts';
 import { AnalysisError } from './analysisError.ts';
+import { backOnto, commonCellSizeM, onCellsOf } from './commonCells.ts';
 import type { Cells, Grid } from './grid.ts';
 import type { CellZones } from './zoningFit.ts';
 import type { BlockInput, ZoningLayer, ZoningReadings } from './zoningTypes.ts';
@@ -15,15 +16,17 @@ export interface StackedBlocks {
   readonly grid: Grid;
   readonly layers: readonly ZoningLayer[];
   readonly readings: readonly ZoningReadings[];
-  /** The block's own part of what was made of all. */
+  /** The block's own part of what was made of all, on its own cells. */
   readonly ownPart: (zones: CellZones) => CellZones;
 }
 
-export function stackBlocks(own: BlockInput, others: readonly BlockInput[]): StackedBlocks {
-  const { grid, layers, readings = [] } = own;
-  if (others.length === 0) return { grid, layers, readings, ownPart: (zones) => zones };
-  const blocks = [own, ...others].sort((a, b) => (a.grid.key < b.grid.key ? -1 : 1));
-  for (const block of others) assertFits(own, block);
+export function stackBlocks(asked: BlockInput, askedWith: readonly BlockInput[]): StackedBlocks {
+  if (askedWith.length === 0) return { grid: asked.grid, layers: asked.layers, readings: asked.readings ?? [], ownPart: (zones) => zones };
+  for (const block of askedWith) assertFits(asked, block);
+  const cellSizeM = commonCellSizeM([asked, ...askedWith]);
+  const own = onCellsOf(cellSizeM, asked);
+  const { grid, layers } = own;
+  const blocks = [own, ...askedWith.map((block) => onCellsOf(cellSizeM, block))].sort((a, b) => (a.grid.key < b.grid.key ? -1 : 1));
   const place = placesOf(blocks.map((block) => block.grid));
   const share = new Float32Array(place.cols * place.rows);
   const inside = new Uint8Array(share.length);
@@ -37,7 +40,7 @@ export function stackBlocks(own: BlockInput, others: readonly BlockInput[]): Sta
     grid: stacked,
     layers: layers.map((layer) => ({ ...layer, cells: stackedCells(layer.id, blocks, place) })),
     readings: stackedReadings(blocks, place),
-    ownPart: ({ labels, doubt }) => ({ labels: cut(labels, { grid, cols: place.cols, start }), doubt: cut(doubt, { grid, cols: place.cols, start }) }),
+    ownPart: ({ labels, doubt }) => backOnto(asked.grid, grid, { labels: cut(labels, { grid, cols: place.cols, start }), doubt: cut(doubt, { grid, cols: place.cols, start }) }),
   };
 }
 
@@ -92,7 +95,6 @@ function cut<Values extends Uint8Array | Float32Array>(from: Values, { grid, col
 }
 
 function assertFits(own: BlockInput, other: BlockInput): void {
-  if (other.grid.cellSizeM !== own.grid.cellSizeM) throw new AnalysisError('cell-sizes', `Blocks with cells of ${own.grid.cellSizeM} m and of ${other.grid.cellSizeM} m cannot be zoned together; give them the same cell size or zone them apart.`);
   const missing = own.layers.find(({ id }) => !other.layers.some((layer) => layer.id === id));
   if (missing) throw new AnalysisError('layer-missing', `Layer "${missing.id}" does not lie on all of the blocks; leave it out or zone them apart.`);
 }

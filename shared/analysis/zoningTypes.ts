@@ -3,6 +3,9 @@
 import type { MultiPolygonLonLat, MultiPolygonXY } from '../geo/coordinates.ts';
 import type { Cells, Grid, Labels } from './grid.ts';
 import type { LayerAdvice } from './layerAdvice.ts';
+import type { RowsXY } from '../geo/rowsLayout.ts';
+import type { VineTable } from '../geo/vines.ts';
+import type { SnapMode } from './snapToRows.ts';
 import type { StandardMethod } from './standardise.ts';
 import type { VerdictResult } from './verdict.ts';
 import type { FruitCheck } from './verdictFruit.ts';
@@ -30,6 +33,8 @@ export interface ZoningOptions {
   readonly smallestPatchHa: number;
   /** Parts of a zone narrower than this join a neighbour, metres. 0 leaves them. */
   readonly narrowestM: number;
+  /** Borders along the rows, for a harvester (whole rows) or pickers (parts of rows); free leaves them as the ground has them. */
+  readonly borders: 'free' | SnapMode;
   /** Replace the weighted layers by their principal components. */
   readonly principalComponents: boolean;
   readonly seed: number;
@@ -53,7 +58,9 @@ export interface BlockInput {
 
 export interface ZoningInput extends BlockInput {
   readonly options?: Partial<ZoningOptions>;
-  /** Other blocks with the same layers, to be zoned as one with this block; weights are those of this block. */
+  /** Rows and vines of the block; needed for borders along them. */
+  readonly planting?: { readonly rows: RowsXY; readonly vines: VineTable };
+  /** Other blocks with the same layers, to be zoned as one with this block, on the coarsest cells of all; weights are those of this block. */
   readonly together?: readonly BlockInput[];
 }
 
@@ -115,6 +122,8 @@ export interface ZoneEvidence {
   /** ln of how much less is left within the zones than in random fields without zones, on the calm cells. */
   readonly gap: number | null;
   readonly gapSd: number | null;
+  /** How well the weakest zone comes back when patches of ground are drawn anew, 0…1. */
+  readonly holds: number | null;
   /** What the advised number is the highest of. */
   readonly score: number | null;
   readonly inertia: number;
@@ -131,6 +140,8 @@ export interface ZoningWarning {
 export interface ZoningResult {
   readonly engineVersion: string;
   readonly gridKey: string;
+  /** Cells that the zones were found on, metres: those of the block, or of the coarsest block zoned along. */
+  readonly cellSizeM: number;
   readonly options: ZoningOptions;
   readonly weights: readonly { readonly layerId: string; readonly weight: number }[];
   readonly advisedWeights: readonly LayerAdvice[];
@@ -138,7 +149,7 @@ export interface ZoningResult {
   readonly fruit: FruitCheck;
   /** Number of zones that the evidence speaks for: 1 when the verdict is one. */
   readonly advisedK: number;
-  /** Best number above one, and neighbours close to it. */
+  /** Best number above one, and others that deserve a look beside it. */
   readonly bestSeveral: number;
   readonly alsoOffer: readonly number[];
   readonly chosenK: number;

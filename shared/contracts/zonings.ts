@@ -12,6 +12,7 @@ export const zoningOptions = z.object({
   smoothingM: z.number().min(0).max(50).default(3),
   smallestPatchHa: z.number().min(0).max(5).default(0.05),
   narrowestRows: z.number().min(0).max(20).default(0),
+  borders: z.enum(['free', 'wholeRow', 'partRow']).default('free'),
   principalComponents: z.boolean().default(false),
   /** Other blocks zoned as one with this block: zones of one number are then of one kind in all. */
   withBlocks: z.array(id).max(40).default([]),
@@ -65,6 +66,8 @@ export const evidenceRow = z.object({
   silhouette: z.number().nullable(),
   calinskiHarabasz: z.number().nullable(),
   stability: z.number().nullable(),
+  /** How well the weakest zone comes back when ground is drawn anew, 0…1; null for runs of before. */
+  holds: z.number().nullable(),
   gap: z.number().nullable(),
   score: z.number().nullable(),
   patches: z.number().int(),
@@ -83,6 +86,8 @@ export const zoningView = z.object({
   blockName: z.string(),
   /** Names of the blocks it was zoned together with. */
   withBlockNames: z.array(z.string()),
+  /** Cells that the zones were found on, metres: coarser than the block's own where a block zoned along has coarser ones. */
+  cellSizeM: z.number(),
   options: zoningOptions,
   engineVersion: z.string(),
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),

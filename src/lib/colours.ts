@@ -1,74 +1,20 @@
 import type { RampName } from '../../shared/catalog/layerTypes.ts';
+import { channels, luminance, unorderedColours } from '../../shared/catalog/zoneStyles.ts';
 
-/**
- * Colours of zones and of layer values. Colour never stands alone: a zone also has a number and a pattern.
- * Unordered set: Okabe & Ito, Color Universal Design. Ramps: sampled from Crameri, Scientific colour maps (2020):
- * tokyo, lajolla, bamako, lipari, vik.
- */
-export type ColourSet = 'ordered' | 'unordered';
-export const patterns = ['plain', 'diagonal', 'dots', 'cross', 'backDiagonal', 'horizontal'] as const;
-export type Pattern = (typeof patterns)[number];
+export { channels, luminance, markOn, patterns, zoneStyle, type ColourSet, type Pattern, type ZoneStyle } from '../../shared/catalog/zoneStyles.ts';
 
-const unordered = ['#56B4E9', '#D55E00', '#F0E442', '#0072B2', '#CC79A7', '#009E73'];
-
+/** Colours of layer values. Ramps: sampled from Crameri, Scientific colour maps (2020): tokyo, lajolla, bamako, lipari, vik. */
 const ramps: Record<RampName, readonly string[]> = {
   vigour: ['#1C0E34', '#5D304A', '#705751', '#747053', '#7C9859', '#A2D887', '#EFFCDD'],
   conductivity: ['#191900', '#442817', '#8F403D', '#D9604E', '#E79452', '#F2C85D', '#FFFECB'],
   terrain: ['#003B47', '#16483A', '#365E26', '#637A0A', '#988D03', '#D0B74A', '#FFE5AD'],
   ripeness: ['#031326', '#294B70', '#6B5F76', '#A56267', '#E57B62', '#E5B488', '#FDF5DA'],
   difference: ['#001261', '#06548B', '#71A8C4', '#ECE5E0', '#D39774', '#AB4814', '#590008'],
-  classes: unordered,
+  classes: unorderedColours,
 };
-
-/** Low to high, k = 2 to 5 as sampled from tokyo; k = 1 is its middle, k = 6 interpolated between its seven stops. */
-const ordered: Record<number, readonly string[]> = {
-  1: ['#747053'],
-  2: ['#1C0E34', '#EFFCDD'],
-  3: ['#1C0E34', '#747053', '#EFFCDD'],
-  4: ['#1C0E34', '#705751', '#7C9859', '#EFFCDD'],
-  5: ['#1C0E34', '#6C4750', '#747053', '#87B666', '#EFFCDD'],
-  6: ['#1C0E34', '#613849', '#726152', '#7A8857', '#9BCB7E', '#EFFCDD'],
-};
-
-export interface ZoneStyle {
-  readonly fill: string;
-  readonly pattern: Pattern;
-  /** Colour of pattern marks and vine ticks on the fill. */
-  readonly mark: string;
-}
-
-export interface ZoneStyleOptions {
-  readonly set?: ColourSet;
-  /** How many zones the block has; the ordered set needs it. */
-  readonly count: number;
-  /** Colours that people gave zones, by zone number. */
-  readonly own?: Readonly<Record<number, string>>;
-}
 
 /** Colours offered for zones of one's own choice. */
-export const ownColours: readonly string[] = unordered;
-
-/** Fill, pattern and mark colour of a zone. `zone` counts from 1; past 6 the six styles repeat. */
-export function zoneStyle(zone: number, { set = 'ordered', count, own = {} }: ZoneStyleOptions): ZoneStyle {
-  const place = (zone - 1) % 6;
-  const palette = set === 'unordered' ? unordered : ordered[Math.min(6, Math.max(1, count))]!;
-  const fill = own[zone] ?? palette[place % palette.length]!;
-  return { fill, pattern: patterns[place]!, mark: markOn(fill) };
-}
-
-/** Ink on light fills, chalk on dark ones. The threshold is the luminance where both have equal contrast. */
-export function markOn(fill: string): string {
-  return luminance(fill) > 0.2 ? '#1C2B33' : '#F6F4EE';
-}
-
-/** Relative luminance of a hex colour (WCAG 2.2, definition of relative luminance). */
-export function luminance(hex: string): number {
-  const [red, green, blue] = channels(hex).map((value) => {
-    const share = value / 255;
-    return share <= 0.04045 ? share / 12.92 : ((share + 0.055) / 1.055) ** 2.4;
-  });
-  return 0.2126 * red! + 0.7152 * green! + 0.0722 * blue!;
-}
+export const ownColours: readonly string[] = unorderedColours;
 
 /** Contrast ratio of two hex colours (WCAG 2.2). */
 export function contrast(one: string, other: string): number {
@@ -104,11 +50,7 @@ export function rampGradient(ramp: RampName): string {
 export function classColour(classNumber: number, own: Readonly<Record<number, string>> = {}): string {
   const chosen = own[classNumber];
   if (chosen !== undefined) return chosen;
-  return unordered[((Math.round(classNumber) % 6) + 6) % 6]!;
-}
-
-export function channels(hex: string): [number, number, number] {
-  return [1, 3, 5].map((at) => Number.parseInt(hex.slice(at, at + 2), 16)) as [number, number, number];
+  return unorderedColours[((Math.round(classNumber) % 6) + 6) % 6]!;
 }
 
 /** Real colours of end posts, by the name the estate typed. */

@@ -3,13 +3,14 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { strFromU8, unzipSync } from 'fflate';
-import type { FeatureCollection, MultiPolygon, Position } from 'geojson';
+import type { FeatureCollection, MultiLineString, MultiPolygon, Position } from 'geojson';
 import { fromArrayBuffer } from 'geotiff';
 import Papa from 'papaparse';
 import * as shapefiles from 'shpjs';
 import initSqlJs from 'sql.js';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import { channels, zoneStyle } from '../../shared/catalog/zoneStyles.ts';
 import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
@@ -19,6 +20,7 @@ import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Person } from '../../server/models/Person.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { hasTool, readWithGdal } from './support/gdal.ts';
 import { makePlateauBlock, workOnZoning, type PlateauBlock } from './support/makePlateauBlock.ts';
 import { outline, place } from './support/shapes.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
@@ -79,21 +81,6 @@ const bytesOf = async (format: string) => {
   return answer.body as Buffer;
 };
 
-function hasTool(tool: string): boolean {
-  try {
-    execFileSync(tool, [tool === 'pdftotext' ? '-v' : '--version'], { stdio: 'ignore' });
-    return true;
-  } catch {
-    return false;
-  }
-}
-
-/** What GDAL's own reader makes of a file, as GeoJSON with many decimals. */
-function readWithGdal(file: string): FeatureCollection<MultiPolygon> {
-  const out = execFileSync('ogr2ogr', ['-f', 'GeoJSON', '-lco', 'COORDINATE_PRECISION=10', '-nlt', 'PROMOTE_TO_MULTI', '/vsistdout/', file], { encoding: 'utf8', maxBuffer: 1e8 });
-  return JSON.parse(out) as FeatureCollection<MultiPolygon>;
-}
-
 const areaOf = (coordinates: Position[][][]) => polygonsArea(polygonsToUtm(coordinates as unknown as MultiPolygonLonLat, place.epsg));
 
 /** Distance in metres from each position of one set to the nearest of the other; the greatest of them. */
@@ -115,10 +102,30 @@ function expectZones(read: FeatureCollection<MultiPolygon>, nameOf: (properties:
   });
 }
 
+/** The rows as the table of rows has them, each line as long as its vines stand and in the ground of its zone. */
+function expectRows(read: FeatureCollection<MultiLineString>, [row, from, to, zone, zoneName]: readonly string[]): void {
+  const { block, rows } = plot.ground;
+  const zoneOf = new Map(seen.zones.map(({ number, name }) => [number, name]));
+  expect(read.features.length).toBeGreaterThan(plot.ground.stored.length);
+  for (const { properties, geometry } of read.features) {
+    const of = (name: string | undefined) => properties![name!] as unknown;
+    const vines = Number(of(to)) - Number(of(from)) + 1;
+    const lines = (geometry as unknown as { type: string }).type === 'LineString' ? [geometry.coordinates as unknown as Position[]] : geometry.coordinates;
+    const points = lines.map((line) => polygonsToUtm([[line]] as unknown as MultiPolygonLonLat, place.epsg)[0]![0]!);
+    const length = points.reduce((sum, line) => sum + line.slice(1).reduce((all, [x, y], at) => all + Math.hypot(x - line[at]![0], y - line[at]![1]), 0), 0);
+    expect(zoneOf.get(Number(of(zone)))).toBe(of(zoneName));
+    expect(rows.rows.some((_, at) => plot.ground.stored[at]!.label === of(row))).toBe(true);
+    // Half a vine may be cut off where a row ends.
+    expect(Math.abs(length - vines * block.vineSpacingM)).toBeLessThan(1.01 * block.vineSpacingM);
+  }
+  const total = read.features.reduce((sum, { properties }) => sum + Number(properties![to!]) - Number(properties![from!]) + 1, 0);
+  expect(total).toBe(plot.ground.vines.count);
+}
+
 describe('formats of zones', () => {
   it('are listed for menus', async () => {
     const { body } = await manager.get('/api/formats');
-    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'geotiff', 'layers']);
+    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'rowsGeojson', 'rowsShapefile', 'rowsKml', 'geotiff', 'layers']);
     expect((await (await app.browser()).get('/api/formats')).status).toBe(401);
   });
 
@@ -186,7 +193,7 @@ describe('the shapefile', () => {
   it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
     const file = join(folder, 'zones.zip');
     writeFileSync(file, await bytesOf('shapefile'));
-    expectZones(readWithGdal(`/vsizip/${file}/zones.shp`), (properties) => properties.NAME);
+    expectZones(readWithGdal<FeatureCollection<MultiPolygon>>(`/vsizip/${file}/zones.shp`), (properties) => properties.NAME);
     expect(execFileSync('ogrinfo', ['-so', '-al', `/vsizip/${file}/zones.shp`], { encoding: 'utf8' })).toMatch(/WGS[ _](19)?84/);
   });
 });
@@ -206,8 +213,8 @@ describe('the GeoPackage', () => {
   it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
     const file = join(folder, 'zones.gpkg');
     writeFileSync(file, await bytesOf('geopackage'));
-    const out = execFileSync('ogr2ogr', ['-f', 'GeoJSON', '-lco', 'COORDINATE_PRECISION=10', '/vsistdout/', file, 'zones'], { encoding: 'utf8', maxBuffer: 1e8 });
-    expectZones(JSON.parse(out) as FeatureCollection<MultiPolygon>, (properties) => properties.name);
+    expectZones(readWithGdal<FeatureCollection<MultiPolygon>>(file, 'zones'), (properties) => properties.name);
+    expectRows(readWithGdal<FeatureCollection<MultiLineString>>(file, 'rows'), ['row', 'from_vine', 'to_vine', 'zone', 'zone_name']);
     expect(execFileSync('ogrinfo', ['-so', '-al', file], { encoding: 'utf8' })).toMatch(/WGS 84[\s\S]*Multi Polygon|Multi Polygon[\s\S]*WGS 84/);
   });
 });
@@ -238,13 +245,44 @@ describe('KML', () => {
   it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
     const file = join(folder, 'zones.kml');
     writeFileSync(file, await bytesOf('kml'));
-    expectZones(readWithGdal(file), (properties) => properties.Name ?? properties.name);
+    expectZones(readWithGdal<FeatureCollection<MultiPolygon>>(file), (properties) => properties.Name ?? properties.name);
   });
 
   it('escapes what would break it', async () => {
     const text = (await bytesOf('kml')).toString('utf8');
     expect(text).toContain('Ødegård–Šípek &quot;Süd&quot;, 丘');
     expect(text.match(/<Placemark>/g)).toHaveLength(2);
+  });
+});
+
+describe('rows as lines', () => {
+  const titles = ['row', 'from_vine', 'to_vine', 'zone', 'zone_name'];
+
+  it('are GeoJSON with a line for each stretch of one zone', async () => {
+    expectRows(JSON.parse((await bytesOf('rowsGeojson')).toString('utf8')) as FeatureCollection<MultiLineString>, titles);
+    expect(decodeURIComponent((await take('rowsGeojson')).headers['content-disposition'] as string)).toContain('Été 2026 rows.geojson');
+  });
+
+  it('are read back from the shapefile by shpjs', async () => {
+    const bytes = await bytesOf('rowsShapefile');
+    const read = await shp(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length) as ArrayBuffer);
+    expectRows(read as unknown as FeatureCollection<MultiLineString>, titles.map((title) => title.toUpperCase()));
+  });
+
+  it.skipIf(!hasTool('ogr2ogr'))('are read from shapefile and KML by GDAL, each vertex within a centimetre', async () => {
+    const own = JSON.parse((await bytesOf('rowsGeojson')).toString('utf8')) as FeatureCollection<MultiLineString>;
+    const [zip, kml] = [join(folder, 'rows.zip'), join(folder, 'rows.kml')];
+    writeFileSync(zip, await bytesOf('rowsShapefile'));
+    writeFileSync(kml, await bytesOf('rowsKml'));
+    const [shapes, marks] = [readWithGdal<FeatureCollection<MultiLineString>>(`/vsizip/${zip}/rows.shp`), readWithGdal<FeatureCollection<MultiLineString>>(kml)];
+    expectRows(shapes, titles.map((title) => title.toUpperCase()));
+    expectRows(marks, titles);
+    for (const read of [shapes, marks]) {
+      read.features.forEach(({ geometry }, at) => {
+        expect(farthest([geometry.coordinates], [own.features[at]!.geometry.coordinates])).toBeLessThan(0.01);
+        expect(farthest([own.features[at]!.geometry.coordinates], [geometry.coordinates])).toBeLessThan(0.01);
+      });
+    }
   });
 });
 
@@ -287,6 +325,21 @@ describe('the printed report', () => {
     return execFileSync('pdftotext', ['-layout', file, '-'], { encoding: 'utf8' }).replace(/\s+/g, ' ');
   };
 
+  /** The first page as pixels of a PPM (three channels) or PGM (one). */
+  const drawn = async (how: '' | '-gray') => {
+    const file = join(folder, 'drawn.pdf');
+    writeFileSync(file, await print('?size=A4'));
+    const bytes = execFileSync('pdftoppm', ['-r', '60', '-singlefile', ...(how === '' ? [] : [how]), file], { maxBuffer: 1e8 });
+    const [head] = /^P[56]\s+\d+\s+\d+\s+\d+\s/.exec(bytes.toString('latin1', 0, 40))!;
+    return bytes.subarray(head.length);
+  };
+  /** Share of the pixels that are within `by` of a colour in every channel. */
+  const shareOf = (pixels: Buffer, colour: readonly number[], by: number) => {
+    let like = 0;
+    for (let at = 0; at < pixels.length; at += colour.length) if (colour.every((value, channel) => Math.abs(pixels[at + channel]! - value) <= by)) like += 1;
+    return (like * colour.length) / pixels.length;
+  };
+
   it('is a PDF of the paper asked for, 210 × 297 mm or 8.5 × 11 inches', async () => {
     const sheet = (bytes: Buffer) => /\/MediaBox \[0 0 ([\d.]+) ([\d.]+)\]/.exec(bytes.toString('latin1'))!.slice(1).map(Number);
     const [a4, letter] = [await print('?size=A4'), await print('?size=Letter')];
@@ -310,6 +363,15 @@ describe('the printed report', () => {
     expect(text.replace(/\s+/g, ' ')).toMatch(/averaged on cells of \d+\.\d m and smoothed over \d+\.\d m/);
     for (const zone of seen.zones) expect(text).toContain((zone.areaM2 / 10_000).toFixed(2));
     expect(text).toContain('Ødegård–Sípek');
+  });
+
+  it.skipIf(!hasTool('pdftoppm'))('has the map in the zones’ colours, as different in grey as in colour', async () => {
+    const [colours, greys] = [await drawn(''), await drawn('-gray')];
+    const fills = [1, 2].map((number) => channels(zoneStyle(number, { count: 2 }).fill));
+    for (const fill of fills) expect(shareOf(colours, fill, 3)).toBeGreaterThan(0.01);
+    const [dark, light] = fills.map(([red, green, blue]) => Math.round(0.299 * red + 0.587 * green + 0.114 * blue));
+    for (const grey of [dark!, light!]) expect(shareOf(greys, [grey], 6)).toBeGreaterThan(0.01);
+    expect(light! - dark!).toBeGreaterThan(100);
   });
 
   it.skipIf(!hasTool('pdftotext'))('speaks the language of whoever prints it', async () => {

@@ -4,7 +4,6 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
 import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
-import { Block } from '../../server/models/Block.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Job } from '../../server/models/Job.ts';
 import { Layer } from '../../server/models/Layer.ts';
@@ -13,7 +12,7 @@ import { Season } from '../../server/models/Season.ts';
 import { Zoning } from '../../server/models/Zoning.ts';
 import { ZoningCandidate } from '../../server/models/ZoningCandidate.ts';
 import { ZoningEditor } from '../../server/models/ZoningEditor.ts';
-import { zonesOfVines } from '../../server/ground/blockVines.ts';
+import { gridOf, zonesOfVines } from '../../server/ground/blockVines.ts';
 import { JobCancelled, startRunner } from '../../server/jobs/runner.ts';
 import { editZones, keepAsDraft } from '../../server/services/zonings/editZones.ts';
 import { requestZoning } from '../../server/services/zonings/request.ts';
@@ -113,6 +112,22 @@ describe('a zoning', () => {
     expect((await labelsOf(one, 2)).some((label) => label === 2)).toBe(true);
   });
 
+  it('is repeated to the byte from the options and the seed that are stored', async () => {
+    const first = await view(await zoned({ zones: 3, smoothingM: 4, smallestPatchHa: 0.02, narrowestRows: 2, standardise: 'robust', seed: 12, name: 'Once' }));
+    const asked = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, { ...first.options, seed: first.seed });
+    await workOnZoning(asked.body.jobId as string);
+    const again = await view(asked.body.zoningId as string);
+    expect(again.options).toEqual(first.options);
+    for (const part of ['verdict', 'reasons', 'advisedZones', 'alsoOffer', 'evidence', 'layers', 'differences', 'warnings', 'engineVersion'] as const) expect(again[part], part).toEqual(first[part]);
+    const stored = await Promise.all([first, again].map(({ id }) => ZoningCandidate.query().where({ zoningId: id }).orderBy('zoneCount')));
+    expect(stored[0]).toHaveLength(6);
+    stored[0]!.forEach((candidate, i) => {
+      const other = stored[1]![i]!;
+      expect([candidate.labels.equals(other.labels), candidate.doubt!.equals(other.doubt!)]).toEqual([true, true]);
+      expect(JSON.stringify(other.zones)).toBe(JSON.stringify(candidate.zones));
+    });
+  });
+
   it('refuses a recipe that cannot be used and says what is wrong with it', async () => {
     const ask = (body: object) => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, body);
     for (const [body, words] of [
@@ -150,12 +165,24 @@ describe('a zoning', () => {
     expect(there.evidence.map(({ stability }) => stability)).toEqual(here.evidence.map(({ stability }) => stability));
     for (const at of [0, 1]) expect(Math.abs(here.zones[at]!.layers[0]!.mean! - there.zones[at]!.layers[0]!.mean!)).toBeLessThan(0.05);
     expect((await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ withBlocks: [randomUUID()] }))).status).toBe(404);
-    const { cellSizeM } = await Block.query().findById(second.blockId).throwIfNotFound();
-    await Block.query().findById(second.blockId).patch({ cellSizeM: 5 });
-    const refused = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ withBlocks: [second.blockId] }));
-    expect(refused.status).toBe(422);
-    expect(refused.body).toMatchObject({ code: 'cellSizes', detail: expect.stringMatching(new RegExp(`cells of ${cellSizeM} m and Clos du Lavoir cells of 5 m.*zone them apart`)) });
-    await Block.query().findById(second.blockId).patch({ cellSizeM });
+  });
+
+  it('is made of blocks whose cells differ on the coarser ones, and each keeps its own', async () => {
+    const second = await makePlateauBlock(owner, { name: 'Clos du Puits', x: 600, cellSizeM: 3 });
+    await BlockLayer.query().where({ blockId: second.blockId, layerId: second.layerId }).patch({ layerId: plot.layerId });
+    const asked = await agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, recipe({ zones: 2, withBlocks: [second.blockId] }));
+    expect(asked.status, asked.text).toBe(202);
+    const { zoningId, jobId, together } = asked.body as { zoningId: string; jobId: string; together: { zoningId: string; jobId: string }[] };
+    for (const job of [jobId, together[0]!.jobId]) await workOnZoning(job);
+    const [here, there] = [await view(zoningId, 2), await view(together[0]!.zoningId, 2)];
+    expect(plot.ground.block.cellSizeM).toBeLessThan(3);
+    expect([here.cellSizeM, there.cellSizeM]).toEqual([3, 3]);
+    expect(there.evidence.map(({ stability }) => stability)).toEqual(here.evidence.map(({ stability }) => stability));
+    expect((await labelsOf(zoningId, 2)).length).toBe(gridOf(plot.ground).inside.length);
+    expect((await labelsOf(together[0]!.zoningId, 2)).length).toBe(gridOf(second.ground).inside.length);
+    for (const at of [0, 1]) expect(Math.abs(here.zones[at]!.layers[0]!.mean! - there.zones[at]!.layers[0]!.mean!)).toBeLessThan(0.05);
+    expect((await manager.patch(`${base()}/zonings/${zoningId}`, { chosenZones: 2 })).status).toBe(200);
+    await expectWhole(zoningId);
   });
 
   it('leaves out a layer with red findings until somebody answers for it', async () => {
@@ -423,6 +450,8 @@ function randomOperation(random: () => number): ZoneOperation {
     { kind: 'giveRows', toZone: zone(), rows: [{ rowId: row(), from: null, to: null }, { rowId: row(), from: 3, to: 40 }] },
     { kind: 'giveArea', toZone: zone(), area: { type: 'Polygon', coordinates: [[a, b, c, a]] } },
     { kind: 'renumber', numbers: [{ from: zone(), to: 7 }] },
+    { kind: 'rename', zone: zone(), name: random() < 0.5 ? 'Côteau' : null },
+    { kind: 'recolour', zone: zone(), colour: random() < 0.5 ? '#56B4E9' : null },
     { kind: 'snap', mode: random() < 0.5 ? 'wholeRow' : 'partRow', shortestRunM: 15 },
     { kind: 'clean', smallestPatchHa: 0.03, narrowestRows: 3 },
   ];

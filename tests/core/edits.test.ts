@@ -204,8 +204,14 @@ function randomEdit(random: Random, grid: Grid, map: ZoneMap): ZoneEdit {
     () => ({ kind: 'give', toZone: zone(), ground: { shape: 'strips', strips: [{ lineLonLat: [anywhere(), anywhere(), anywhere()], widthM: 1 + 6 * random() }] } }),
     () => ({ kind: 'give', toZone: zone(), ground: { shape: 'cells', cells: Array.from({ length: 30 }, () => randomIndex(random, grid.share.length)) } }),
     () => ({ kind: 'renumber', numbers: [{ from: zone(), to: 1 + randomIndex(random, 60) }] }),
+    () => {
+      const [one, other] = [zone(), zone()];
+      return { kind: 'renumber', numbers: [{ from: one, to: other }, { from: other, to: one }] };
+    },
+    () => ({ kind: 'recolour', zone: zone(), colour: random() < 0.5 ? null : '#56B4E9' }),
     () => ({ kind: 'rename', zone: zone(), name: `N${randomIndex(random, 100)}` }),
     () => ({ kind: 'clean', minPatchHa: random() * 0.01 }),
+    () => ({ kind: 'clean', minPatchHa: random() * 0.01, narrowestM: 8 * random() }),
     () => ({ kind: 'replace', runs: runsFromLabels(map.labels.map((label) => (label === 0 ? 0 : ((label * 7) % 60) + 1))), reason: 'snapped' }),
   ];
   return makers[randomIndex(random, makers.length)]!();

@@ -86,7 +86,7 @@ describe('layer advice', () => {
 });
 
 describe('the number of zones', () => {
-  const row = (k: number, gap: number, separation: number) => ({ k, gap, separation, gapSd: 0.1, withinShare: 0.1 });
+  const row = (k: number, gap: number, separation: number, holds = 1) => ({ k, gap, separation, gapSd: 0.1, withinShare: 0.1, holds });
 
   it('has the largest ln(Calinski–Harabasz) + gap, and close neighbours are offered', () => {
     const advice = adviseZoneCount({ curve: [row(2, 0.2, 100), row(3, 0.9, 150), row(4, 0.85, 152), row(5, 0.2, 100)], layerCount: 2, workable: [2, 3, 4, 5] });
@@ -101,6 +101,19 @@ describe('the number of zones', () => {
 
   it('takes the smaller number on a tie', () => {
     expect(adviseZoneCount({ curve: [row(2, 0.5, 100), row(3, 0.5, 100)], layerCount: 2, workable: [2, 3] }).best).toBe(2);
+  });
+
+  it('is the best of those whose every zone comes back from ground drawn anew, and the best of all is offered beside it', () => {
+    const curve = [row(2, 0.9, 100, 0.97), row(3, 1.4, 150, 0.9), row(4, 1.3, 160, 0.8), row(5, 1.5, 180, 0.55)];
+    expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 3, alsoOffer: [4, 5] });
+    // Where nothing holds, the score alone is left.
+    expect(adviseZoneCount({ curve: curve.map((one) => ({ ...one, holds: 0.5 })), layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 5, alsoOffer: [] });
+  });
+
+  it('offers a neighbour whose zones are stable where its own are not', () => {
+    const curve = [row(2, 0.5, 100, 0.99), row(3, 0.9, 150, 0.7), row(4, 0.2, 100, 0.7)];
+    expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 3, 4] })).toMatchObject({ best: 3, alsoOffer: [2] });
+    expect(adviseZoneCount({ curve: curve.map((one) => ({ ...one, holds: one.k === 3 ? 0.9 : 0.99 })), layerCount: 2, workable: [2, 3, 4] }).alsoOffer).toEqual([]);
   });
 
   it('is never one whose zones clean-up would remove', () => {

@@ -185,7 +185,7 @@ describe('the verdict', () => {
     areaM2: rest.areaM2 ?? 20_000,
     layerIds: structure.map((_, i) => `layer ${i}`),
     structures: structure.map((value) => ({ structure: value, byDirection: [], isStriped: rest.isStriped ?? false })),
-    curve: [{ k: 2, withinShare: 0.5, gap: gap / 2, gapSd: 0.1, separation: 10 }, { k: 3, withinShare: 0.3, gap, gapSd: rest.gapSd ?? 0.1, separation: 20 }],
+    curve: [{ k: 2, withinShare: 0.5, gap: gap / 2, gapSd: 0.1, separation: 10, holds: 1 }, { k: 3, withinShare: 0.3, gap, gapSd: rest.gapSd ?? 0.1, separation: 20, holds: 1 }],
   });
 
   it('is one without structure, several with plateaus, worth testing on a slope', () => {
@@ -274,7 +274,7 @@ describe('readings of fruit', () => {
   });
 
   it('take several back to worth testing when enough of them disagree', () => {
-    const several = judge({ areaM2: 20_000, layerIds: ['a', 'b'], structures: [0.4, 0.5].map((structure) => ({ structure, byDirection: [], isStriped: false })), curve: [{ k: 2, withinShare: 0.2, gap: 1, gapSd: 0.1, separation: 9 }] });
+    const several = judge({ areaM2: 20_000, layerIds: ['a', 'b'], structures: [0.4, 0.5].map((structure) => ({ structure, byDirection: [], isStriped: false })), curve: [{ k: 2, withinShare: 0.2, gap: 1, gapSd: 0.1, separation: 9, holds: 1 }] });
     const disagrees = checkOnFruit([{ measure: 'brix', readings: vines(0, 3) }], seededRandom(1));
     expect(disagrees.state).toBe('disagrees');
     expect(withFruit(several, disagrees).verdict).toBe('test');

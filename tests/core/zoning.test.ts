@@ -9,7 +9,11 @@ import { standardise } from '../../shared/analysis/standardise.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
 import { featureTable, fitZones } from '../../shared/analysis/zoningFit.ts';
 import type { ZoningInput, ZoningLayer, ZoningStage } from '../../shared/analysis/zoningTypes.ts';
+import { labelVines, rowRuns } from '../../shared/analysis/snapToRows.ts';
 import { polygonsArea } from '../../shared/geo/rings.ts';
+import { buildRows } from '../../shared/geo/rows.ts';
+import { polygonsFromUtm } from '../../shared/geo/utm.ts';
+import { vineTable } from '../../shared/geo/vines.ts';
 import { noiseBlock, zonedBlock } from '../bench/simulatedBlock.ts';
 
 const block = zonedBlock({ areaHa: 2, cellSizeM: 4, random: seededRandom(12), k: 3, difficulty: 0.3, edgeM: 6 });
@@ -112,6 +116,42 @@ describe('a zoning', () => {
   it('draws the chosen number only, unless asked for all', () => {
     const drawn = makeZoning({ ...input, options: { ...input.options, drawAll: false } }).candidates.map(({ zones }) => zones[0]!.polygonsLonLat !== null);
     expect(drawn).toEqual([false, false, true, false, false, false]);
+  });
+});
+
+describe('borders of a zoning along the rows', () => {
+  const rows = buildRows(polygonsFromUtm(grid.outlineXY, grid.epsg), { bearingDeg: 20, bearingKind: 'grid', epsg: grid.epsg, rowSpacingM: 2.5, vineSpacingM: 1.2, headlandM: 3 });
+  const planting = { rows, vines: vineTable(rows) };
+  const runsOf = (labels: Uint8Array) => rowRuns(planting.vines, labelVines(grid, labels, planting.vines));
+  /** Share of the vines that stand in another zone than most of their row. Cells are wider than rows here, so it is never nothing. */
+  const strayShare = (labels: Uint8Array) => {
+    const counts = new Map<number, Map<number, number>>();
+    for (const { rowIndex, fromOrdinal, toOrdinal, label } of runsOf(labels)) {
+      const row = counts.get(rowIndex) ?? new Map<number, number>();
+      counts.set(rowIndex, row.set(label, (row.get(label) ?? 0) + toOrdinal - fromOrdinal + 1));
+    }
+    return 1 - [...counts.values()].reduce((sum, row) => sum + Math.max(...row.values()), 0) / planting.vines.count;
+  };
+
+  it('leave few vines outside the zone of their row for a harvester, and keep closer to the ground for pickers', () => {
+    const [whole, part] = (['wholeRow', 'partRow'] as const).map((borders) => makeZoning({ ...input, planting, options: { ...input.options, borders } }));
+    expect(whole!.advisedK).toBe(3);
+    for (const snapped of [whole!, part!]) {
+      const { labels, zones } = snapped.candidates[2]!;
+      labels.forEach((label, cell) => expect(label > 0).toBe(grid.inside[cell] === 1));
+      expect(zones.reduce((sum, { areaM2 }) => sum + areaM2, 0) / polygonsArea(grid.outlineXY)).toBeCloseTo(1, 6);
+    }
+    const [free, harvester, pickers] = [result, whole!, part!].map(({ candidates }) => candidates[2]!.labels);
+    expect(planting.vines.count).toBeGreaterThan(4000);
+    expect(strayShare(free!)).toBeGreaterThan(0.2);
+    expect(strayShare(harvester!)).toBeLessThan(0.05);
+    expect(runsOf(pickers!).length).toBeLessThan(runsOf(free!).length);
+    expect(adjustedRandIndex(insideOf(free!), insideOf(pickers!))).toBeGreaterThan(adjustedRandIndex(insideOf(free!), insideOf(harvester!)));
+    expect(adjustedRandIndex(insideTruth, insideOf(pickers!))).toBeGreaterThan(0.7);
+  });
+
+  it('need rows', () => {
+    expect(() => makeZoning({ ...input, options: { ...input.options, borders: 'wholeRow' } })).toThrow(/lay out its rows/);
   });
 });
 

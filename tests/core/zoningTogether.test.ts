@@ -1,4 +1,6 @@
 import { describe, expect, it } from 'vitest';
+import { adjustedRandIndex } from '../../shared/analysis/agreement.ts';
+import { onCellsOf } from '../../shared/analysis/commonCells.ts';
 import { gridOfOutline, type Grid } from '../../shared/analysis/grid.ts';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
@@ -43,9 +45,55 @@ describe('blocks zoned together', () => {
     }
   });
 
-  it('are refused with a sentence when cells or layers do not match', () => {
-    const coarse = gridOfOutline(other.grid.outlineXY, 32631, 5);
-    expect(() => makeZoning({ ...one, together: [block(coarse, [1, 2, 3], 1)] })).toThrow(/cells of 3 m and of 5 m cannot be zoned together/);
+  it('are refused with a sentence when a layer does not lie on all', () => {
     expect(() => makeZoning({ ...one, together: [{ ...other, layers: [{ ...other.layers[0]!, id: 'else' }] }] })).toThrow(/Layer "vigour" does not lie on all of the blocks/);
+  });
+});
+
+describe('blocks of different cells', () => {
+  const coarse = block(gridOfOutline(other.grid.outlineXY, 32631, 5), [0.7, 0.7, 0.5], 2);
+  const [fineSide, coarseSide] = [makeZoning({ ...one, options, together: [coarse] }), makeZoning({ ...coarse, options, together: [one] })];
+
+  it('are looked at in the coarsest, and each keeps its own', () => {
+    expect([fineSide.cellSizeM, coarseSide.cellSizeM]).toEqual([5, 5]);
+    expect(coarseSide.evidence.map(({ inertia }) => inertia)).toEqual(fineSide.evidence.map(({ inertia }) => inertia));
+    for (const [result, { grid }] of [[fineSide, one], [coarseSide, coarse]] as const) {
+      expect(result.gridKey).toBe(grid.key);
+      for (const { labels, zones } of result.candidates) {
+        expect(labels.length).toBe(grid.inside.length);
+        labels.forEach((label, cell) => expect(label > 0).toBe(grid.inside[cell] === 1));
+        expect(zones.reduce((sum, zone) => sum + zone.areaM2, 0) / polygonsArea(grid.outlineXY)).toBeCloseTo(1, 6);
+      }
+    }
+    expect([...meansOf(coarseSide).keys()]).toEqual([2, 3]);
+    for (const number of [2, 3]) expect(meansOf(coarseSide).get(number)).toBeCloseTo(meansOf(fineSide).get(number)!, 1);
+  });
+
+  it('find the zones that cells of one size find', () => {
+    const same = makeZoning({ ...one, options, together: [other] });
+    const inside = [...one.grid.inside.keys()].filter((cell) => one.grid.inside[cell] === 1);
+    const labels = ({ candidates }: typeof same) => inside.map((cell) => candidates[2]!.labels[cell]!);
+    expect(adjustedRandIndex(labels(fineSide), labels(same))).toBeGreaterThan(0.93);
+  });
+});
+
+describe('coarser cells', () => {
+  const square = (sideM: number, cellSizeM: number) => gridOfOutline([[[[0, 0], [sideM, 0], [sideM, sideM], [0, sideM], [0, 0]]]], 32631, cellSizeM);
+  const layer = (cells: readonly number[], kind: 'number' | 'class' = 'number') => ({ id: 'a', type: 'vigour', role: 'evidence' as const, kind, cells: Float32Array.from(cells), weight: null });
+
+  it('hold means weighted by area; by hand for 2 m in 3 m', () => {
+    const fine = square(6, 2);
+    const { grid, layers, readings } = onCellsOf(3, { grid: fine, layers: [layer([1, 2, 3, 4, 5, 6, 7, 8, 9])], readings: [{ measure: 'brix', values: [{ cell: 0, row: null, value: 20 }, { cell: 8, row: null, value: 21 }, { cell: -1, row: null, value: 22 }] }] });
+    expect([grid.cols, grid.rows]).toEqual([2, 2]);
+    // North-west: 1 whole, half of 2, half of 4, a quarter of 5, over 2.25: (1 + 1 + 2 + 1.25) / 2.25.
+    [5.25, 8.25, 14.25, 17.25].forEach((sum, cell) => expect(layers[0]!.cells[cell]).toBeCloseTo(sum / 2.25, 5));
+    expect(readings![0]!.values.map(({ cell }) => cell)).toEqual([0, 3, -1]);
+  });
+
+  it('take the class with most ground, and pass over what is missing', () => {
+    const fine = square(6, 2);
+    expect([...onCellsOf(3, { grid: fine, layers: [layer([1, 2, 2, 1, 2, 2, 3, 3, 3], 'class')] }).layers[0]!.cells]).toEqual([1, 2, 3, 3]);
+    expect(onCellsOf(3, { grid: fine, layers: [layer([NaN, 2, 3, NaN, NaN, 6, 7, 8, 9])] }).layers[0]!.cells[0]).toBe(2);
+    expect(onCellsOf(2, { grid: fine, layers: [] }).grid).toBe(fine);
   });
 });

@@ -2,8 +2,9 @@ import { boundsOf } from '../../../shared/geo/bounds.ts';
 import type { MultiPolygonXY, RingXY, XY } from '../../../shared/geo/coordinates.ts';
 import { polygonsCentroid, polygonsArea } from '../../../shared/geo/rings.ts';
 import { convergenceDeg, fromUtm, polygonsToUtm } from '../../../shared/geo/utm.ts';
+import { zoneStyle } from '../../../shared/catalog/zoneStyles.ts';
 import { ink, type Page } from './reportPage.ts';
-import type { ZoneReport } from './zoneReport.ts';
+import type { ReportZone, ZoneReport } from './zoneReport.ts';
 
 interface Box {
   x: number;
@@ -14,7 +15,7 @@ interface Box {
 
 type ToPaper = (point: XY) => [number, number];
 
-/** Marks of the zones on paper, so that grey print tells them apart; past six they repeat and the number decides. */
+/** Marks of the zones on paper, in the order of the screen's patterns, so that grey print tells them apart; past six they repeat and the number decides. */
 const patterns: ((page: Page, box: Box) => void)[] = [
   () => undefined,
   (page, box) => hatch(page, box, 1),
@@ -27,17 +28,18 @@ const patterns: ((page: Page, box: Box) => void)[] = [
   level,
 ];
 const gap = 6;
+const patternOpacity = 0.65;
 
 /** The zones as vectors with their marks and numbers, the outline, a scale bar and an arrow to true north. */
 export function drawMap(page: Page, report: ZoneReport, box: Box): void {
   const outline = polygonsToUtm(report.boundary, report.epsg);
-  const zones = report.zones.map((zone) => ({ number: zone.number, shape: polygonsToUtm(zone.polygonsLonLat, report.epsg) }));
+  const zones = report.zones.map((zone) => ({ zone, number: zone.number, shape: polygonsToUtm(zone.polygonsLonLat, report.epsg) }));
   const { toPaper, metresPerPoint } = frame(outline, { ...box, width: box.width - 60 });
-  for (const { number, shape } of zones) {
+  for (const { zone, shape } of zones) {
     page.save();
     trace(page, shape, toPaper);
     page.clip('even-odd');
-    drawMarks(page, number, box);
+    fillZone(page, { zone, count: zones.length }, box);
     page.restore();
   }
   for (const { shape } of zones) {
@@ -53,16 +55,26 @@ export function drawMap(page: Page, report: ZoneReport, box: Box): void {
   drawScale(page, { right, bottom: box.y + box.height, metresPerPoint, units: report.units });
 }
 
-/** The mark of a zone in a box, for map and legend. */
-export function drawMarks(page: Page, number: number, box: Box): void {
-  page.lineWidth(0.6).strokeColor('#4A555B').fillColor('#4A555B');
-  patterns[(number - 1) % patterns.length]!(page, box);
+export interface PaintedZone {
+  readonly zone: Pick<ReportZone, 'number' | 'colour'>;
+  /** Zones of the block; the ordered colours go by it. */
+  readonly count: number;
 }
 
-export function drawSwatch(page: Page, number: number, box: Box): void {
+/** Colour and mark of a zone over a box, as on the screen; whoever calls has clipped the page to the zone's shape. */
+function fillZone(page: Page, { zone: { number, colour }, count }: PaintedZone, box: Box): void {
+  const { fill, mark } = zoneStyle(number, { count, own: colour === null ? {} : { [number]: colour } });
+  page.rect(box.x, box.y, box.width, box.height).fill(fill);
+  page.opacity(patternOpacity).lineWidth(0.6).strokeColor(mark).fillColor(mark);
+  patterns[(number - 1) % patterns.length]!(page, box);
+  page.opacity(1);
+}
+
+/** The patch of a zone in the legend. */
+export function drawSwatch(page: Page, painted: PaintedZone, box: Box): void {
   page.save();
   page.rect(box.x, box.y, box.width, box.height).clip();
-  drawMarks(page, number, box);
+  fillZone(page, painted, box);
   page.restore();
   page.rect(box.x, box.y, box.width, box.height).lineWidth(0.8).strokeColor(ink).stroke();
 }

@@ -1,3 +1,5 @@
+import type { NumberNote } from '../../../shared/analysis/numberNotes.ts';
+
 /** Words of the printed zone report by language. Translations need a native reader before release. */
 export const reportTexts = {
   en: {
@@ -29,6 +31,13 @@ export const reportTexts = {
     vines: 'Vines',
     difference: '{layer} runs from {lowest}{unit} in the lowest zone to {highest}{unit} in the highest, with ± {within}{unit} inside a zone.',
     saysNothing: 'Zones of vigour promise nothing about ripeness or taste.',
+    zonesN: '{n} zones',
+    number: {
+      doubtful: 'The weakest of {zones} comes back only to {holds} when ground is drawn anew: walk its borders before you rely on them.',
+      unsteady: '{zones} stand out more, but the weakest of them comes back only to {holds} when ground is drawn anew.',
+      steadier: '{zones} hold better: the weakest comes back to {holds}, against {own}.',
+      close: '{zones} do nearly as well.',
+    },
     inWords: ['one', 'two', 'three', 'four', 'five', 'six'],
     verdict: { one: 'Treat as one.', test: 'Worth testing as {zones} zones.', testOne: 'Worth testing as one zone.', several: 'Worth zoning into {zones}.', severalOne: 'Worth zoning as one.', notJudged: 'The layers alone cannot tell.' },
     stateOf: { running: 'Running', proposed: 'Proposed', draft: 'Draft', live: 'In force', retired: 'Earlier', failed: 'Failed' },
@@ -77,6 +86,13 @@ export const reportTexts = {
     vines: 'Cepas',
     difference: '{layer} va de {lowest}{unit} en la zona más baja a {highest}{unit} en la más alta, con ± {within}{unit} dentro de una zona.',
     saysNothing: 'Las zonas de vigor no prometen nada sobre madurez ni sabor.',
+    zonesN: '{n} zonas',
+    number: {
+      doubtful: 'La más débil de {zones} solo vuelve al {holds} al sortear de nuevo el terreno: recorra sus límites antes de fiarse.',
+      unsteady: '{zones} destacan más, pero la más débil solo vuelve al {holds} al sortear de nuevo el terreno.',
+      steadier: '{zones} aguantan mejor: la más débil vuelve al {holds}, frente al {own}.',
+      close: '{zones} quedan casi igual de bien.',
+    },
     inWords: ['una', 'dos', 'tres', 'cuatro', 'cinco', 'seis'],
     verdict: { one: 'Tratar como una.', test: 'Merece probarse como {zones} zonas.', testOne: 'Merece probarse como una zona.', several: 'Merece dividirse en {zones} zonas.', severalOne: 'Merece una zona.', notJudged: 'Las capas solas no bastan.' },
     stateOf: { running: 'Calculando', proposed: 'Propuesta', draft: 'Borrador', live: 'En vigor', retired: 'Anterior', failed: 'Fallido' },
@@ -125,6 +141,13 @@ export const reportTexts = {
     vines: 'Ceps',
     difference: '{layer} va de {lowest}{unit} dans la zone la plus basse à {highest}{unit} dans la plus haute, avec ± {within}{unit} à l’intérieur.',
     saysNothing: 'Des zones de vigueur ne promettent rien sur la maturité ni le goût.',
+    zonesN: '{n} zones',
+    number: {
+      doubtful: 'La plus faible des {zones} ne revient qu’à {holds} quand le terrain est retiré au sort : parcourez ses limites avant de vous y fier.',
+      unsteady: '{zones} se détachent davantage, mais la plus faible ne revient qu’à {holds} quand le terrain est retiré au sort.',
+      steadier: '{zones} tiennent mieux : la plus faible revient à {holds}, contre {own}.',
+      close: '{zones} font presque aussi bien.',
+    },
     inWords: ['une', 'deux', 'trois', 'quatre', 'cinq', 'six'],
     verdict: { one: 'À traiter comme une seule.', test: 'À essayer comme {zones} zones.', testOne: 'À essayer comme une zone.', several: 'À diviser en {zones} zones.', severalOne: 'À garder en une zone.', notJudged: 'Les couches seules ne peuvent le dire.' },
     stateOf: { running: 'En cours', proposed: 'Proposé', draft: 'Brouillon', live: 'En vigueur', retired: 'Antérieur', failed: 'Échoué' },
@@ -173,6 +196,13 @@ export const reportTexts = {
     vines: 'Ceppi',
     difference: '{layer} va da {lowest}{unit} nella zona più bassa a {highest}{unit} nella più alta, con ± {within}{unit} dentro una zona.',
     saysNothing: 'Le zone di vigoria non promettono nulla su maturazione o gusto.',
+    zonesN: '{n} zone',
+    number: {
+      doubtful: 'La più debole di {zones} ritorna solo al {holds} se il terreno è risorteggiato: ne percorra i confini prima di fidarsene.',
+      unsteady: '{zones} risaltano di più, ma la più debole ritorna solo al {holds} se il terreno è risorteggiato.',
+      steadier: '{zones} reggono meglio: la più debole ritorna al {holds}, contro il {own}.',
+      close: '{zones} vanno quasi altrettanto bene.',
+    },
     inWords: ['una', 'due', 'tre', 'quattro', 'cinque', 'sei'],
     verdict: { one: 'Trattare come una sola.', test: 'Vale la pena provare come {zones} zone.', testOne: 'Vale la pena provare come una zona.', several: 'Vale la divisione in {zones} zone.', severalOne: 'Vale una zona.', notJudged: 'Gli strati da soli non bastano.' },
     stateOf: { running: 'In corso', proposed: 'Proposta', draft: 'Bozza', live: 'In vigore', retired: 'Precedente', failed: 'Fallito' },
@@ -221,6 +251,13 @@ export const reportTexts = {
     vines: 'Cepas',
     difference: '{layer} vai de {lowest}{unit} na zona mais baixa a {highest}{unit} na mais alta, com ± {within}{unit} dentro de uma zona.',
     saysNothing: 'Zonas de vigor nada prometem sobre maturação ou sabor.',
+    zonesN: '{n} zonas',
+    number: {
+      doubtful: 'A mais fraca de {zones} só volta a {holds} quando o terreno é sorteado de novo: percorra os seus limites antes de confiar.',
+      unsteady: '{zones} destacam-se mais, mas a mais fraca só volta a {holds} quando o terreno é sorteado de novo.',
+      steadier: '{zones} seguram melhor: a mais fraca volta a {holds}, contra {own}.',
+      close: '{zones} ficam quase tão bem.',
+    },
     inWords: ['uma', 'duas', 'três', 'quatro', 'cinco', 'seis'],
     verdict: { one: 'Tratar como uma só.', test: 'Vale a pena experimentar como {zones} zonas.', testOne: 'Vale a pena experimentar como uma zona.', several: 'Merece dividir-se em {zones} zonas.', severalOne: 'Merece uma zona.', notJudged: 'As camadas sozinhas não chegam.' },
     stateOf: { running: 'A calcular', proposed: 'Proposta', draft: 'Rascunho', live: 'Em vigor', retired: 'Anterior', failed: 'Falhou' },
@@ -246,6 +283,9 @@ export interface ReportTexts {
   readonly [key: string]: string | readonly string[] | Readonly<Record<string, string>>;
   readonly inWords: readonly string[];
   readonly verdict: Readonly<Record<string, string>>;
+  readonly zonesN: string;
+  /** By code of a note on the number of zones. */
+  readonly number: Readonly<Record<NumberNote['code'], string>>;
   readonly stateOf: Readonly<Record<string, string>>;
   readonly reason: Readonly<Record<string, string>>;
 }

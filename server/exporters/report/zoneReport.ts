@@ -1,4 +1,5 @@
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import type { NumberNote } from '../../../shared/analysis/numberNotes.ts';
 import type { ReportLanguage } from './reportTexts.ts';
 
 /** What the printed report of a zoning is made from. */
@@ -18,6 +19,8 @@ export interface ZoneReport {
   isJudged: boolean;
   advisedZones: number | null;
   reasons: readonly { code: string; about: string | null }[];
+  /** What is said of the number of zones beside others. */
+  numbers: readonly NumberNote[];
   layers: readonly ReportLayer[];
   differences: readonly { layerId: string; lowest: number; highest: number; withinSd: number }[];
   zones: readonly ReportZone[];
@@ -46,6 +49,8 @@ export interface ReportLayer {
 export interface ReportZone {
   number: number;
   name: string;
+  /** One that people gave it. */
+  colour: string | null;
   areaM2: number;
   vines: number;
   missing: number;

@@ -11,7 +11,7 @@ const leastMapHeight = 140;
 const lineHeight = 17;
 const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
 
-/** The report of a zoning as PDF, for people without the program: verdict, map with marks that print in grey, zones, layers, limits. */
+/** The report of a zoning as PDF, for people without the program: verdict, map in the zones' colours with marks that tell them apart in grey, zones, layers, limits. */
 export function zonesReport(report: ZoneReport): Promise<Buffer> {
   const words = wordsOf(report);
   const title = filled(words.texts.title as string, { block: report.blockName });
@@ -31,7 +31,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   zoneTable(page, report, words);
   if (report.reasons.length > 0) {
     heading(page, words.texts.why as string);
-    paragraph(page, [...reasonsOf(report, words.texts), ...differencesOf(report, words)].join(' '));
+    paragraph(page, [...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
   }
   layerTable(page, report, words);
   method(page, report, words);
@@ -81,6 +81,11 @@ function reasonsOf({ reasons, layers, language }: ZoneReport, texts: ReportTexts
     .filter((text) => text !== '');
 }
 
+function numbersOf({ numbers }: ZoneReport, { texts, figure }: Words): string[] {
+  const share = (value: number) => `${figure(100 * value, 0)} %`;
+  return numbers.map(({ code, k, holds, ownHolds }) => filled(texts.number[code], { zones: filled(texts.zonesN, { n: k }), holds: share(holds), own: share(ownHolds) }));
+}
+
 function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figure }: Words): string[] {
   if (zones.length < 2) return [];
   return differences.flatMap(({ layerId, lowest, highest, withinSd }) => {
@@ -115,7 +120,7 @@ function zoneTable(page: Page, report: ZoneReport, { texts, figure }: Words): vo
     ...layers.map((layer) => meanOf(zone.means.find(({ layerId }) => layerId === layer.layerId), layer, figure)),
   ]);
   heading(page, texts.zones as string);
-  table(page, columns, lines, { width: 30, draw: (line, x, y) => drawSwatch(page, report.zones[line]!.number, { x, y: y + 1, width: 22, height: 10 }) });
+  table(page, columns, lines, { width: 30, draw: (line, x, y) => drawSwatch(page, { zone: report.zones[line]!, count: report.zones.length }, { x, y: y + 1, width: 22, height: 10 }) });
 }
 
 function meanOf(stats: { mean: number | null; sd: number | null } | undefined, layer: ReportLayer, figure: Words['figure']): string {

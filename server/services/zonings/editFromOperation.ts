@@ -1,6 +1,6 @@
 import type { ZoneEdit, ZoneMap } from '../../../shared/analysis/edits.ts';
 import { runsFromLabels } from '../../../shared/analysis/editsRuns.ts';
-import { snapToRows } from '../../../shared/analysis/snapToRows.ts';
+import { CUT_PENALTY, snapToRows } from '../../../shared/analysis/snapToRows.ts';
 import type { ZoneOperation } from '../../../shared/contracts/zonings.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
@@ -8,9 +8,6 @@ import { fromAlongAcross, toAlongAcross } from '../../../shared/geo/rowFrame.ts'
 import { pointOnPiece } from '../../../shared/geo/vines.ts';
 import { Unusable } from '../../errors.ts';
 import { gridOf, type BlockVines } from '../../ground/blockVines.ts';
-
-/** Vines wrong for one border more: a run shorter than about two panels is not worth its two borders. */
-const cutPenalty = 4;
 
 /** What a person asked for, as the edit that is kept and replayed: rows become ground, snapping becomes its outcome. */
 export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: ZoneOperation): ZoneEdit {
@@ -28,7 +25,7 @@ export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: Z
       return { kind: 'give', toZone: operation.toZone, ground: { shape: 'polygons', polygonsLonLat: polygons as unknown as MultiPolygonLonLat } };
     }
     case 'snap': {
-      const { cellLabels } = snapToRows({ grid: gridOf(ground), labels: map.labels, rows: ground.rows, vines: ground.vines }, { mode: operation.mode, shortestRunM: operation.shortestRunM, cutPenalty });
+      const { cellLabels } = snapToRows({ grid: gridOf(ground), labels: map.labels, rows: ground.rows, vines: ground.vines }, { mode: operation.mode, shortestRunM: operation.shortestRunM, cutPenalty: CUT_PENALTY });
       return { kind: 'replace', runs: runsFromLabels(cellLabels), reason: 'snapped' };
     }
     case 'clean':

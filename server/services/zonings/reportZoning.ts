@@ -1,3 +1,4 @@
+import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
@@ -32,9 +33,10 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
     language: person.language in reportTexts ? (person.language as ReportLanguage) : 'en',
     units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
     blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, reasons, differences, engineVersion, seed,
+    numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
     layers: await layersOf(access, view),
-    zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
-    boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: ground.block.cellSizeM,
+    zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
+    boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
     smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa,
   });
   await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });

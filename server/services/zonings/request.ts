@@ -27,7 +27,6 @@ export async function requestZoning(access: Access, blockId: string, input: NewZ
   const options = zoningOptions.parse({ ...input, withBlocks: [...new Set(input.withBlocks)].filter((id) => id !== blockId) });
   const all = [blockId, ...options.withBlocks];
   const blocks = await Promise.all(all.map((id) => Block.query().findOne({ estateId: access.estateId, id }).whereNull('retiredAt').throwIfNotFound()));
-  requireSameCells(blocks);
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
   for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
   const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();
@@ -60,12 +59,6 @@ async function requireKnownRecipe(access: Access, blockId: string, options: Retu
     return recipe.success && JSON.stringify(recipe.data) === wanted;
   });
   if (!isKnown) throw new NotAllowed('You may run a zoning again as it was; the agronomist chooses other layers and weights.');
-}
-
-/** Blocks zoned as one lie on one grid of cells. */
-function requireSameCells([first, ...others]: readonly Block[]): void {
-  const odd = others.find(({ cellSizeM }) => cellSizeM !== first!.cellSizeM);
-  if (odd) throw new Unusable('cellSizes', `${first!.name} has cells of ${first!.cellSizeM} m and ${odd.name} cells of ${odd.cellSizeM} m. Blocks zoned together need the same: change the cell of layers in the facts of one of them, or zone them apart.`);
 }
 
 /** A layer with red findings keeps out of zoning unless somebody answers for it by name. */

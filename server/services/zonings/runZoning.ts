@@ -41,8 +41,8 @@ export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<Zonin
   const options = zoningOptions.parse(zoning.options);
   if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
   const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));
-  const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, principalComponents } = options;
-  return { ...(await blockInput(zoning, ground, options)), together, options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, principalComponents, seed: zoning.seed, drawAll: true } };
+  const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, borders, principalComponents } = options;
+  return { ...(await blockInput(zoning, ground, options)), together, ...(borders === 'free' ? {} : { planting: { rows: ground.rows, vines: ground.vines } }), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true } };
 }
 
 async function blockInput(zoning: Zoning, ground: BlockVines, options: ZoningRequestOptions): Promise<BlockInput> {
@@ -70,7 +70,7 @@ function daysOfFruit({ readings = [], together = [] }: ZoningInput): Record<stri
 }
 
 async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Record<string, string[]>): Promise<void> {
-  const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares } = result;
+  const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares, cellSizeM } = result;
   await Zoning.transaction(async (trx) => {
     const stillWanted = await Zoning.query(trx).findOne({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).forUpdate().select('id');
     if (!stillWanted) return;
@@ -83,7 +83,7 @@ async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Reco
     );
     await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({
       state: 'proposed', engineVersion: result.engineVersion, verdict: plainFigures(verdict), advisedZones: result.advisedK,
-      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, fruitDays, componentShares }),
+      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, fruitDays, componentShares, cellSizeM }),
     });
   });
 }

@@ -21,7 +21,8 @@ import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 
 /** What `zonings.evidence` holds. */
 interface StoredEvidence {
-  rows: ZoneEvidence[];
+  /** Zonings of before have no `holds`. */
+  rows: (Omit<ZoneEvidence, 'holds'> & { holds?: number | null })[];
   advisedWeights: LayerAdvice[];
   weights: { layerId: string; weight: number }[];
   alsoOffer: number[];
@@ -30,6 +31,8 @@ interface StoredEvidence {
   fruit?: FruitCheck;
   /** By measure; zonings of before have none. */
   fruitDays?: Record<string, string[]>;
+  /** Zonings of before have none: theirs were the block's. */
+  cellSizeM?: number;
 }
 
 interface StoredCandidate {
@@ -88,7 +91,8 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     ...line!,
     blockName: ground.block.name,
     withBlockNames: options.success && options.data.withBlocks.length > 0 ? (await Block.query().where({ estateId: access.estateId }).findByIds(options.data.withBlocks).orderBy('name').select('name')).map(({ name }) => name) : [],
-    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, principalComponents: false, withBlocks: [] },
+    cellSizeM: evidence?.cellSizeM ?? ground.block.cellSizeM,
+    options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, borders: 'free', principalComponents: false, withBlocks: [] },
     engineVersion: zoning.engineVersion,
     layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
     isJudged: verdict?.isJudged ?? false,
@@ -119,14 +123,14 @@ async function layersOf(access: Access, layerIds: string[], evidence: StoredEvid
 }
 
 /** The evidence with the sampling it would cost: each zone's mean of one measure within its margin, at the estate's assumed spread. */
-async function evidenceRows(access: Access, rows: ZoneEvidence[], ground: BlockVines): Promise<EvidenceRow[]> {
+async function evidenceRows(access: Access, rows: StoredEvidence['rows'], ground: BlockVines): Promise<EvidenceRow[]> {
   const measure = await MeasureRecord.query().findOne({ estateId: access.estateId, code: 'brix' });
   const bearing = ground.states.filter((state) => isBearing(state)).length;
   return rows.map((row) => {
     const vines = Math.max(2, Math.round(bearing / row.k));
     const each = measure && measure.marginKind === 'absolute' && measure.spreadKind === 'sd' ? sampleSize({ spread: measure.spreadValue, margin: measure.margin, confidence: measure.confidence, populationSize: vines, minimum: 5 }).n : null;
     const { k, varianceExplained, silhouette, calinskiHarabasz, stability, gap, score, patches, smallestZoneHa } = row;
-    return { k, varianceExplained, silhouette, calinskiHarabasz, stability, gap, score, patches, smallestZoneHa, samples: each === null ? null : each * k, hours: each === null || !measure ? null : (each * k * measure.secondsPerSample) / 3600 };
+    return { k, varianceExplained, silhouette, calinskiHarabasz, stability, holds: row.holds ?? null, gap, score, patches, smallestZoneHa, samples: each === null ? null : each * k, hours: each === null || !measure ? null : (each * k * measure.secondsPerSample) / 3600 };
   });
 }
 

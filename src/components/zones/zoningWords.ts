@@ -1,3 +1,4 @@
+import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { Format } from '../../lib/format.ts';
 
@@ -19,6 +20,13 @@ export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; 
   const sentences = [first, fruit].flatMap((code) => (code ? [reasonWords(zoning, code, { t, format })] : []));
   const also = ['too-small', 'stripes-evened', 'one-layer'].filter((code) => codes.has(code)).map((code) => reasonWords(zoning, code, { t, format }));
   return { answer, rest: sentences.join(' '), below: [...also, differenceWords(zoning, { t, format }), t('zones.saysNothing')].filter((text) => text !== '').join(' ') };
+}
+
+/** What is doubtful about the advised number, and what speaks for another; empty where there is nothing to say. */
+export function numberWords({ advisedZones, alsoOffer, evidence }: ZoningView, { t, format }: { t: Translate; format: Format }): string {
+  return numberNotes(advisedZones, alsoOffer, evidence)
+    .map(({ code, k, holds, ownHolds }) => t(`zones.number.${code}`, { zones: t('zones.count', { n: k }, k), holds: format.percent(holds), own: format.percent(ownHolds) }))
+    .join(' ');
 }
 
 /** What an adjusted Rand index means, in five steps of our own. */

@@ -17,10 +17,10 @@ export interface PlateauBlock {
 }
 
 /** A block of four corners, none of them square, with a vigour layer of two plateaus, about 0.4 in the west and 0.7 in the east of a winding border. */
-export async function makePlateauBlock(owner: { estateId: string; personId: string }, over: { name?: string; x?: number } = {}): Promise<PlateauBlock> {
+export async function makePlateauBlock(owner: { estateId: string; personId: string }, over: { name?: string; x?: number; cellSizeM?: number } = {}): Promise<PlateauBlock> {
   const { name = 'Côte à l’Éperon', x = 0 } = over;
   const boundary = outline([[x, 0], [x + 150, 7], [x + 161, 104], [x + 5, 98]]);
-  const { id: blockId } = await createBlock({ ...owner, roles: ['owner'] }, newBlock.parse({ name, boundary, rowSpacingM: 2.5, vineSpacingM: 1.2 }), new Date('2026-06-01'));
+  const { id: blockId } = await createBlock({ ...owner, roles: ['owner'] }, newBlock.parse({ name, boundary, rowSpacingM: 2.5, vineSpacingM: 1.2, ...(over.cellSizeM === undefined ? {} : { cellSizeM: over.cellSizeM }) }), new Date('2026-06-01'));
   const ground = await loadBlockVines(owner.estateId, blockId);
   const grid = gridOf(ground);
   const random = seededRandom(7);

@@ -15,6 +15,21 @@ import { randomIndex, type Random } from './random.ts';
 export const TRUSTED_FROM = 0.6;
 export const STABLE_FROM = 0.75;
 
+/** Fits on halves that agree better by this are much steadier (judgement). */
+const MUCH_STEADIER = 0.15;
+
+export interface Steadiness {
+  readonly holds: number | null;
+  /** Agreement of fits on halves. */
+  readonly stability: number | null;
+}
+
+/** Stable where the other is not, or found again much more surely from half of the cells. */
+export function isSteadier(one: Steadiness, other: Steadiness): boolean {
+  const crosses = one.holds !== null && other.holds !== null && one.holds >= STABLE_FROM && other.holds < STABLE_FROM;
+  return crosses || (one.stability !== null && other.stability !== null && one.stability - other.stability >= MUCH_STEADIER);
+}
+
 export interface HoldOptions {
   readonly k: number;
   readonly random: Random;

@@ -1,32 +1,39 @@
 /** What is to be said of the advised number of zones beside the others. In: the advised number, those to offer, the evidence. Out: notes in order, for screen and paper to word. */
 
-import { STABLE_FROM } from './clusterHold.ts';
+import { isSteadier, STABLE_FROM, type Steadiness } from './clusterHold.ts';
 
 export interface NumberNote {
-  /** Doubtful: the advised number's weakest zone. Unsteady: stands out more, yet a zone of it cannot be trusted. Steadier: stable where the advised is not. Close: nearly as good. */
-  readonly code: 'doubtful' | 'unsteady' | 'steadier' | 'close';
+  /**
+   * Doubtful: the advised number's weakest zone. Of another number, unsteady: it stands out more, yet a zone of it cannot be
+   * trusted. Holds: it is nearly as good and its weakest zone comes back better. Agrees: it is found again much more surely
+   * from half of the cells. Close: it is nearly as good.
+   */
+  readonly code: 'doubtful' | 'unsteady' | 'holds' | 'agrees' | 'close';
   readonly k: number;
-  /** How well the weakest zone of this number comes back, 0…1, and that of the advised one. */
-  readonly holds: number;
-  readonly ownHolds: number;
+  /** The share the note is about, 0…1, and that of the advised number. */
+  readonly share: number;
+  readonly ownShare: number;
 }
 
-export interface NumberEvidence {
+export interface NumberEvidence extends Steadiness {
   readonly k: number;
   readonly score: number | null;
-  readonly holds: number | null;
 }
 
-/** Nothing for one zone, or where nothing is known of how zones hold and no other number is close. */
+/** The weakest zone comes back better by this (judgement). */
+const BETTER = 0.05;
+
+/** Nothing for one zone, or where no other number is worth a look. */
 export function numberNotes(advised: number | null, alsoOffer: readonly number[], evidence: readonly NumberEvidence[]): NumberNote[] {
   const own = evidence.find(({ k }) => k === advised);
   if (!own || own.k < 2) return [];
-  const ownHolds = own.holds ?? 1;
-  const isDoubtful = ownHolds < STABLE_FROM;
-  const others = evidence.filter(({ k }) => alsoOffer.includes(k)).map(({ k, score, holds }): NumberNote => {
-    const isSteadier = isDoubtful && (holds ?? 0) >= STABLE_FROM;
-    const code = (score ?? 0) > (own.score ?? 0) ? 'unsteady' : isSteadier ? 'steadier' : 'close';
-    return { code, k, holds: holds ?? 1, ownHolds };
+  const [ownHolds, ownStability] = [own.holds ?? 1, own.stability ?? 1];
+  const others = evidence.filter(({ k }) => alsoOffer.includes(k)).map((row): NumberNote => {
+    const [holds, stability] = [row.holds ?? 1, row.stability ?? 1];
+    const byHold = { k: row.k, share: holds, ownShare: ownHolds };
+    if ((row.score ?? 0) > (own.score ?? 0)) return { code: 'unsteady', ...byHold };
+    if (holds - ownHolds >= BETTER) return { code: 'holds', ...byHold };
+    return isSteadier(row, own) ? { code: 'agrees', k: row.k, share: stability, ownShare: ownStability } : { code: 'close', ...byHold };
   });
-  return isDoubtful ? [{ code: 'doubtful', k: own.k, holds: ownHolds, ownHolds }, ...others] : others;
+  return ownHolds < STABLE_FROM ? [{ code: 'doubtful', k: own.k, share: ownHolds, ownShare: ownHolds }, ...others] : others;
 }

@@ -8,13 +8,13 @@
  * Sources: Calinski & Harabasz 1974; Tibshirani, Walther & Hastie 2001; Hennig 2007; see verdictGap and clusterHold.
  */
 
-import { STABLE_FROM, TRUSTED_FROM } from './clusterHold.ts';
+import { isSteadier, TRUSTED_FROM } from './clusterHold.ts';
 import type { GapAtK } from './verdictGap.ts';
 
 export interface ZoneCountAdvice {
   /** Best number of zones from 2 to 6; whether more than one is worth it is for the verdict to say. */
   readonly best: number;
-  /** Numbers that deserve a look beside it: neighbours with nearly its score, or with stable zones where it has none; and the highest score of all where a zone of it cannot be trusted. */
+  /** Numbers that deserve a look beside it: those with nearly its score, steadier neighbours, and the highest score of all where a zone of it cannot be trusted. */
   readonly alsoOffer: readonly number[];
   readonly scores: readonly { readonly k: number; readonly score: number }[];
 }
@@ -26,18 +26,20 @@ export interface ZoneCountInput {
   readonly layerCount: number;
   /** Numbers whose zones are all still there after clean-up; a zone without a patch large enough to work is no zone. */
   readonly workable: readonly number[];
+  /** Agreement of fits on halves by number of zones, where it is known. */
+  readonly stability?: ReadonlyMap<number, number | null>;
 }
 
 /** A tie goes to the smaller number: fewer zones are less work in the field. */
-export function adviseZoneCount({ curve, layerCount, workable }: ZoneCountInput): ZoneCountAdvice {
-  const rows = curve.map(({ k, gap, separation, holds }) => ({ k, holds, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
+export function adviseZoneCount({ curve, layerCount, workable, stability }: ZoneCountInput): ZoneCountAdvice {
+  const rows = curve.map(({ k, gap, separation, holds }) => ({ k, holds, stability: stability?.get(k) ?? null, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
   const scores = rows.map(({ k, score }) => ({ k, score }));
   const choice = rows.filter(({ k }) => workable.includes(k));
   if (choice.length === 0) return { best: workable[0] ?? 2, alsoOffer: [], scores };
   const trusted = choice.filter(({ holds }) => holds >= TRUSTED_FROM);
   const best = highest(trusted.length > 0 ? trusted : choice);
-  const close = choice.filter((row) => Math.abs(row.k - best.k) === 1 && row.score <= best.score && best.score - row.score <= CLOSE_SCORE);
-  const steadier = choice.filter((row) => Math.abs(row.k - best.k) === 1 && best.holds < STABLE_FROM && row.holds >= STABLE_FROM);
+  const close = choice.filter((row) => row !== best && row.score <= best.score && best.score - row.score <= CLOSE_SCORE && row.holds >= TRUSTED_FROM);
+  const steadier = choice.filter((row) => Math.abs(row.k - best.k) === 1 && isSteadier(row, best));
   const unsteady = [highest(choice)].filter((row) => row !== best);
   return { best: best.k, alsoOffer: [...new Set([...close, ...steadier, ...unsteady].map(({ k }) => k))].sort((a, b) => a - b), scores };
 }

@@ -103,9 +103,10 @@ export interface ZoningParts {
 /** Number of zones, polygons and figures from what was made and found. */
 export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
   const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
-  const own = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
+  const followed = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
+  const own = followed.map(({ zones }) => zones);
   // A zone that one of several blocks lacks is no less a zone.
-  const count = adviseZoneCount({ ...evidence, workable: workableNumbers(input.together?.length ? cleaned : own) });
+  const count = adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable: workableNumbers(input.together?.length ? cleaned : own) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
@@ -131,14 +132,15 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     evidence: evidenceRows(quality, { curve: evidence.curve, scores: count.scores }, candidates),
     candidates,
     componentShares: table.componentShares,
-    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table })],
+    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table, againstGround: followed[chosenK - 1]!.againstGround })],
   };
 }
 
-/** The zones with their borders along the rows, if that was asked for; doubts stay where they are. */
-function alongRows(zones: CellZones, { input: { grid, planting }, options: { borders } }: ZoningGround): CellZones {
-  if (borders === 'free' || !planting) return zones;
-  return { ...zones, labels: snapToRows({ grid, labels: zones.labels, ...planting }, { mode: borders, cutPenalty: CUT_PENALTY }).cellLabels };
+/** The zones with their borders along the rows, if that was asked for, and the share of vines that this puts elsewhere; doubts stay where they are. */
+function alongRows(zones: CellZones, { input: { grid, planting }, options: { borders } }: ZoningGround): { zones: CellZones; againstGround: number | null } {
+  if (borders === 'free' || !planting) return { zones, againstGround: null };
+  const { cellLabels, wrongVines } = snapToRows({ grid, labels: zones.labels, ...planting }, { mode: borders, cutPenalty: CUT_PENALTY });
+  return { zones: { ...zones, labels: cellLabels }, againstGround: wrongVines / planting.vines.count };
 }
 
 /** The readings with the zone each lies in; those outside the zones are left out. */

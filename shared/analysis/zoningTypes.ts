@@ -132,7 +132,7 @@ export interface ZoneEvidence {
 }
 
 export interface ZoningWarning {
-  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'number-fixed' | 'cells-filled';
+  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
   readonly about: string | null;
   readonly figures: Readonly<Record<string, number>>;
 }

@@ -113,7 +113,9 @@ describe('the number of zones', () => {
   it('offers a neighbour whose zones are stable where its own are not', () => {
     const curve = [row(2, 0.5, 100, 0.99), row(3, 0.9, 150, 0.7), row(4, 0.2, 100, 0.7)];
     expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 3, 4] })).toMatchObject({ best: 3, alsoOffer: [2] });
-    expect(adviseZoneCount({ curve: curve.map((one) => ({ ...one, holds: one.k === 3 ? 0.9 : 0.99 })), layerCount: 2, workable: [2, 3, 4] }).alsoOffer).toEqual([]);
+    const sure = curve.map((one) => ({ ...one, holds: one.k === 3 ? 0.9 : 0.99 }));
+    expect(adviseZoneCount({ curve: sure, layerCount: 2, workable: [2, 3, 4] }).alsoOffer).toEqual([]);
+    expect(adviseZoneCount({ curve: sure, layerCount: 2, workable: [2, 3, 4], stability: new Map([[2, 0.98], [3, 0.67], [4, 0.7]]) }).alsoOffer).toEqual([2]);
   });
 
   it('is never one whose zones clean-up would remove', () => {

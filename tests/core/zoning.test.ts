@@ -120,10 +120,13 @@ describe('a zoning', () => {
 });
 
 describe('borders of a zoning along the rows', () => {
-  const rows = buildRows(polygonsFromUtm(grid.outlineXY, grid.epsg), { bearingDeg: 20, bearingKind: 'grid', epsg: grid.epsg, rowSpacingM: 2.5, vineSpacingM: 1.2, headlandM: 3 });
+  const fine = zonedBlock({ areaHa: 1.2, cellSizeM: 2, random: seededRandom(12), k: 3, difficulty: 0.3, edgeM: 6 });
+  const rows = buildRows(polygonsFromUtm(fine.grid.outlineXY, fine.grid.epsg), { bearingDeg: 20, bearingKind: 'grid', epsg: fine.grid.epsg, rowSpacingM: 2.5, vineSpacingM: 1.2, headlandM: 3 });
   const planting = { rows, vines: vineTable(rows) };
-  const runsOf = (labels: Uint8Array) => rowRuns(planting.vines, labelVines(grid, labels, planting.vines));
-  /** Share of the vines that stand in another zone than most of their row. Cells are wider than rows here, so it is never nothing. */
+  const plain = { grid: fine.grid, layers: [layer('vigour', fine.vigour), layer('conductivity', fine.conductivity)], options: { ...input.options, zones: 3 } };
+  const runsOf = (labels: Uint8Array) => rowRuns(planting.vines, labelVines(fine.grid, labels, planting.vines));
+  const shortRuns = (labels: Uint8Array) => runsOf(labels).filter(({ fromOrdinal, toOrdinal }) => (toOrdinal - fromOrdinal + 1) * 1.2 < 15).length;
+  /** Share of the vines that stand in another zone than most of their row; cells are nearly as wide as rows, so it is not quite nothing. */
   const strayShare = (labels: Uint8Array) => {
     const counts = new Map<number, Map<number, number>>();
     for (const { rowIndex, fromOrdinal, toOrdinal, label } of runsOf(labels)) {
@@ -133,25 +136,27 @@ describe('borders of a zoning along the rows', () => {
     return 1 - [...counts.values()].reduce((sum, row) => sum + Math.max(...row.values()), 0) / planting.vines.count;
   };
 
-  it('leave few vines outside the zone of their row for a harvester, and keep closer to the ground for pickers', () => {
-    const [whole, part] = (['wholeRow', 'partRow'] as const).map((borders) => makeZoning({ ...input, planting, options: { ...input.options, borders } }));
-    expect(whole!.advisedK).toBe(3);
-    for (const snapped of [whole!, part!]) {
-      const { labels, zones } = snapped.candidates[2]!;
-      labels.forEach((label, cell) => expect(label > 0).toBe(grid.inside[cell] === 1));
-      expect(zones.reduce((sum, { areaM2 }) => sum + areaM2, 0) / polygonsArea(grid.outlineXY)).toBeCloseTo(1, 6);
+  it('leave a harvester the row and pickers no short stretches, and fill the block', () => {
+    const [free, harvester, pickers] = (['free', 'wholeRow', 'partRow'] as const).map((borders) => makeZoning({ ...plain, planting, options: { ...plain.options, borders } }).candidates[2]!);
+    for (const { labels, zones } of [harvester!, pickers!]) {
+      labels.forEach((label, cell) => expect(label > 0).toBe(fine.grid.inside[cell] === 1));
+      expect(zones.reduce((sum, { areaM2 }) => sum + areaM2, 0) / polygonsArea(fine.grid.outlineXY)).toBeCloseTo(1, 6);
     }
-    const [free, harvester, pickers] = [result, whole!, part!].map(({ candidates }) => candidates[2]!.labels);
-    expect(planting.vines.count).toBeGreaterThan(4000);
-    expect(strayShare(free!)).toBeGreaterThan(0.2);
-    expect(strayShare(harvester!)).toBeLessThan(0.05);
-    expect(runsOf(pickers!).length).toBeLessThan(runsOf(free!).length);
-    expect(adjustedRandIndex(insideOf(free!), insideOf(pickers!))).toBeGreaterThan(adjustedRandIndex(insideOf(free!), insideOf(harvester!)));
-    expect(adjustedRandIndex(insideTruth, insideOf(pickers!))).toBeGreaterThan(0.7);
+    expect(strayShare(free!.labels)).toBeGreaterThan(0.15);
+    expect(strayShare(harvester!.labels)).toBeLessThan(0.02);
+    expect(shortRuns(pickers!.labels)).toBeLessThan(shortRuns(free!.labels) / 4);
+    const likeFree = ({ labels }: { labels: Uint8Array }) => adjustedRandIndex([...free!.labels], [...labels]);
+    expect(likeFree(pickers!)).toBeGreaterThan(likeFree(harvester!));
+  });
+
+  it('say when the rows run across what was found', () => {
+    const across = makeZoning({ ...plain, planting, options: { ...plain.options, borders: 'wholeRow' } });
+    expect(across.warnings.find(({ code }) => code === 'rows-against-ground')!.figures.share).toBeGreaterThan(0.2);
+    expect(makeZoning({ ...plain, planting, options: { ...plain.options, borders: 'partRow' } }).warnings.filter(({ code }) => code === 'rows-against-ground')).toEqual([]);
   });
 
   it('need rows', () => {
-    expect(() => makeZoning({ ...input, options: { ...input.options, borders: 'wholeRow' } })).toThrow(/lay out its rows/);
+    expect(() => makeZoning({ ...plain, options: { ...plain.options, borders: 'wholeRow' } })).toThrow(/lay out its rows/);
   });
 });
 

@@ -83,7 +83,7 @@ function reasonsOf({ reasons, layers, language }: ZoneReport, texts: ReportTexts
 
 function numbersOf({ numbers }: ZoneReport, { texts, figure }: Words): string[] {
   const share = (value: number) => `${figure(100 * value, 0)} %`;
-  return numbers.map(({ code, k, holds, ownHolds }) => filled(texts.number[code], { zones: filled(texts.zonesN, { n: k }), holds: share(holds), own: share(ownHolds) }));
+  return numbers.map(({ code, k, share: of, ownShare }) => filled(texts.number[code], { zones: filled(texts.zonesN, { n: k }), share: share(of), own: share(ownShare) }));
 }
 
 function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figure }: Words): string[] {

@@ -25,8 +25,18 @@ export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; 
 /** What is doubtful about the advised number, and what speaks for another; empty where there is nothing to say. */
 export function numberWords({ advisedZones, alsoOffer, evidence }: ZoningView, { t, format }: { t: Translate; format: Format }): string {
   return numberNotes(advisedZones, alsoOffer, evidence)
-    .map(({ code, k, holds, ownHolds }) => t(`zones.number.${code}`, { zones: t('zones.count', { n: k }, k), holds: format.percent(holds), own: format.percent(ownHolds) }))
+    .map(({ code, k, share, ownShare }) => t(`zones.number.${code}`, { zones: t('zones.count', { n: k }, k), share: format.percent(share), own: format.percent(ownShare) }))
     .join(' ');
+}
+
+const shares = new Set(['coverage', 'limit', 'share']);
+
+/** What a person should know before using the zones, a sentence each. */
+export function warningWords({ warnings, layers }: Pick<ZoningView, 'warnings' | 'layers'>, { t, format }: { t: Translate; format: Format }): string[] {
+  return warnings.map(({ code, about, figures }) => {
+    const named = Object.entries(figures).map(([name, value]) => [name, value === null ? '' : shares.has(name) ? format.percent(value) : format.number(value)]);
+    return t(`zones.warning.${code}`, { ...Object.fromEntries(named), about: layers.find(({ layerId }) => layerId === about)?.name ?? '' });
+  });
 }
 
 /** What an adjusted Rand index means, in five steps of our own. */

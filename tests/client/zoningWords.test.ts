@@ -27,7 +27,7 @@ describe('what is said of other numbers of zones', () => {
 
 describe('what is said before zones are used', () => {
   it('names the layer and gives shares in percent', () => {
-    const warnings = [{ code: 'layer-coverage', about: 'a', figures: { coverage: 0.72, limit: 0.9 } }, { code: 'number-fixed', about: null, figures: { chosen: 3, advised: 2 } }];
+    const warnings: ZoningView['warnings'] = [{ code: 'layer-coverage', about: 'a', figures: { coverage: 0.72, limit: 0.9 } }, { code: 'number-fixed', about: null, figures: { chosen: 3, advised: 2 } }];
     const layers = [{ layerId: 'a', name: 'Flight of June' }] as unknown as ZoningView['layers'];
     expect(warningWords({ warnings, layers }, { t, format })).toEqual(['zones.warning.layer-coverage(72 %, 90 %, Flight of June)', 'zones.warning.number-fixed(3, 2, )']);
   });

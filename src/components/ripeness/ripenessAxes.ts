@@ -11,11 +11,14 @@ export const dayOfDate = (date: string): number => Math.round(Date.parse(`${date
 /** Sugar and acids first, as a winemaker reads them. */
 const firstOrder = ['brix', 'ph', 'ta'];
 
-/** Measures that are followed over time: sugar and acids always, others from their second visit on. */
+/** What makes tonnes is counted once or twice, long before the fruit is followed: it would press all ripening into a corner of the time axis. */
+const ofYield: readonly string[] = ['clusterCount', 'clusterWeight', 'berriesPerCluster', 'yieldPerVine', 'pruningWeight'];
+
+/** Measures that are followed over time: sugar and acids always, other measures of fruit from their second visit on. */
 export function followedMeasures({ measures, series }: RipeningView): ShownMeasure[] {
   const place = (code: string) => (firstOrder.includes(code) ? firstOrder.indexOf(code) : firstOrder.length);
   return measures
-    .filter(({ code }) => series.some((one) => one.measure === code && (firstOrder.includes(code) || one.points.length > 1)))
+    .filter(({ code }) => series.some((one) => one.measure === code && (firstOrder.includes(code) || (one.points.length > 1 && !ofYield.includes(code)))))
     .sort((a, b) => place(a.code) - place(b.code) || a.code.localeCompare(b.code));
 }
 

@@ -33,7 +33,7 @@ export function writeCase(folder: string, { areaHa, pixelM, seed, k }: FileCase)
   const random = seededRandom(seed);
   const block = zonedBlock({ areaHa, cellSizeM: 2, random, k, difficulty: 0.5, edgeM: 5 });
   const text = (name: string, content: string) => writeFileSync(join(folder, name), content);
-  text('block.geojson', JSON.stringify(feature(polygonsFromUtm(block.grid.outlineXY, block.grid.epsg), { name: 'Simulated block' })));
+  text('block.geojson', JSON.stringify({ type: 'FeatureCollection', features: [feature(polygonsFromUtm(block.grid.outlineXY, block.grid.epsg), { name: 'Simulated block' })] }));
   const picture = bandsOf(block, pixelM, random);
   writeFileSync(join(folder, 'vigour.tif'), geoTiffBytes({ ...picture, epsg: block.grid.epsg, noData: 0 }));
   writeFileSync(join(folder, 'dem.tif'), geoTiffBytes({ ...elevationOf(block.grid, random), epsg: block.grid.epsg, noData: -9999 }));

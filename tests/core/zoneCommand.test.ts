@@ -6,6 +6,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { signedArea } from '../../shared/geo/rings.ts';
 import { readArguments } from '../../server/cli/zoneArguments.ts';
 import { runZoneCommand, type CommandOutcome } from '../../server/cli/zoneCommand.ts';
+import { groundFit } from '../bench/groundFit.ts';
 import { writeCase, type WrittenCase } from '../bench/simulatedFiles.ts';
 
 let folder = '';
@@ -32,6 +33,10 @@ describe('the zoning command', () => {
     const zones = JSON.parse(readFileSync(join(folder, 'zones.geojson'), 'utf8')) as FeatureCollection<MultiPolygon, { zone: number; area_ha: number }>;
     expect(zones.features.map(({ properties }) => properties.zone)).toEqual(zones.features.map((_, at) => at + 1));
     expect(zones.features.reduce((sum, { properties }) => sum + properties.area_ha, 0)).toBeCloseTo(2, 2);
+    // Lines 0.5 m apart across both: no ground twice, and less than a thousandth of two hectares missing or outside.
+    const fit = groundFit(JSON.parse(readFileSync(join(folder, 'block.geojson'), 'utf8')), zones);
+    expect(fit.overlapM2).toBeLessThan(0.01);
+    expect(fit.gapM2 + fit.outsideM2).toBeLessThan(20);
     // RFC 7946: closed rings, outer ones counter-clockwise, degrees.
     for (const { geometry } of zones.features) {
       for (const [outer, ...holes] of geometry.coordinates) {

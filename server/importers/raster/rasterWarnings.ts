@@ -1,4 +1,5 @@
 import type { ImportWarning, RasterUnderstood } from '../understood.ts';
+import { countsDownwards, heightSystemUnit } from './heightSystems.ts';
 import type { OpenRaster } from './openRaster.ts';
 
 interface Notes {
@@ -17,15 +18,13 @@ export function bandWarnings({ raster, badNoData, isPalette }: Notes): ImportWar
   }
   if (isPalette) warnings.push({ code: 'palette', text: 'Its values are numbers of colours, not measurements. Use it only as a layer of classes.' });
   if (layout.bits < 8) warnings.push({ code: 'few-bits', text: `Its values have ${layout.bits} ${layout.bits === 1 ? 'bit' : 'bits'}: at most ${2 ** layout.bits} different values.`, params: { bits: layout.bits } });
+  if (countsDownwards(heightSystemOf(raster.tags.geoKeys))) warnings.push({ code: 'depths', text: 'Its heights count downwards: a larger number means lower ground. Turn their sign round before they are used as elevation.' });
   if (structure.brokenChain) warnings.push({ code: 'broken-chain', text: 'Its list of pictures is damaged after the first one; only the first is used.' });
   if (otherPages > 0) warnings.push({ code: 'more-pages', text: `It holds ${otherPages + 1} pictures; only the first is used.`, params: { pages: otherPages + 1 } });
   return warnings;
 }
 
 const unitCodes: Readonly<Record<number, RasterUnderstood['verticalUnit']>> = { 9001: 'metre', 9002: 'foot', 9003: 'US survey foot' };
-/** Usual height systems by their EPSG code (registry, from memory): NAVD 88 and NGVD 29 in feet; NAVD 88, EGM, European, Australian and national ones in metres. */
-const heightsInFeet: Readonly<Record<number, RasterUnderstood['verticalUnit']>> = { 6360: 'US survey foot', 5702: 'US survey foot', 6358: 'US survey foot', 8228: 'foot', 8050: 'foot', 8052: 'foot', 6130: 'foot' };
-const heightsInMetres = new Set([5703, 5714, 5773, 5798, 3855, 5621, 5730, 9389, 5701, 5709, 5710, 5711, 9458, 5720, 5783, 7837, 5782, 5705, 7839, 7700, 6647, 5713, 5728, 5729, 5778, 5214]);
 const unitNames: readonly (readonly [RegExp, RasterUnderstood['verticalUnit']])[] = [
   [/^(us[ _-]?(survey[ _-]?)?(ft|foot|feet)|ft[ _-]?us|survey foot)$/i, 'US survey foot'],
   [/^(ft|foot|feet|international foot)$/i, 'foot'],
@@ -38,6 +37,10 @@ export function verticalUnitOf(keys: Readonly<Record<string, unknown>> | null, b
   if (named) return named;
   const unit = unitCodes[Number(keys?.['VerticalUnitsGeoKey'])];
   if (unit) return unit;
-  const system = Number(keys?.['VerticalGeoKey'] ?? keys?.['VerticalCSTypeGeoKey']);
-  return heightsInFeet[system] ?? (heightsInMetres.has(system) ? 'metre' : null);
+  return heightSystemUnit(heightSystemOf(keys));
+}
+
+/** EPSG code of the height system that the file names; NaN where it names none. */
+function heightSystemOf(keys: Readonly<Record<string, unknown>> | null): number {
+  return Number(keys?.['VerticalGeoKey'] ?? keys?.['VerticalCSTypeGeoKey']);
 }

@@ -4,6 +4,7 @@ import { readPoints } from './points/readPoints.ts';
 import { describeRaster, type RasterReadOptions } from './raster/describeRaster.ts';
 import { inspectRaster } from './raster/inspectRaster.ts';
 import { tiffNames } from './raster/withRaster.ts';
+import { foreignKind } from './foreignKind.ts';
 import { sniffFormat, type Sniffed, type SniffedFormat } from './sniffFormat.ts';
 import type { PointsUnderstood, RasterUnderstood, VectorUnderstood } from './understood.ts';
 import { layerNames, readVectors } from './vector/readVectors.ts';
@@ -44,15 +45,15 @@ export async function understandAgain(input: string | Uint8Array, options: Raste
 }
 
 /** Files that programs lay beside a picture, and what to do about them. */
-const sideFiles: readonly (readonly [RegExp, fact: string, remedy: string])[] = [
-  [/\.ovr$/i, 'It is an overview beside a picture.', 'The picture alone is enough.'],
-  [/\.aux(\.xml)?$/i, 'It is a file of statistics beside a picture.', 'The picture alone is enough; if its reference system stands only here, choose it when asked.'],
-  [/\.msk$/i, 'It is the mask of a picture in a file of its own, which is not read.', 'Export the picture with its mask inside, or with a no-data value.'],
+const sideFiles: readonly (readonly [RegExp, fact: string, remedy: string, why: string])[] = [
+  [/\.ovr$/i, 'It is an overview beside a picture.', 'The picture alone is enough.', 'is-overview'],
+  [/\.aux(\.xml)?$/i, 'It is a file of statistics beside a picture.', 'The picture alone is enough; if its place or reference system stands only here, send both together.', 'is-auxiliary'],
+  [/\.msk$/i, 'It is the mask of a picture, without the picture.', 'Send both together, with the same name.', 'is-mask'],
 ];
 
 async function formatOf(input: string | Uint8Array, options: RasterReadOptions): Promise<ImportFormat> {
   const beside = sideFiles.find(([name]) => name.test(options.fileName));
-  if (beside !== undefined) throw new ImportProblem({ code: 'wrong-type', fact: beside[1], remedy: beside[2], params: { found: beside[1].slice(6, -1) }, file: options.fileName });
+  if (beside !== undefined) throw new ImportProblem({ code: 'wrong-type', fact: beside[1], remedy: beside[2], params: { why: beside[3] }, file: options.fileName });
   const sniffed = await naming(options.fileName, () => withSource(input, async (source) => sniffContents(source, options.fileName)));
   const format = importFormats.find(({ contents }) => contents.includes(sniffed.format));
   if (format === undefined) throw unreadable(sniffed, options.fileName);
@@ -67,8 +68,8 @@ function sniffContents(source: ByteSource, fileName: string): Sniffed {
 
 function unreadable({ format, foreignName }: Sniffed, file: string): ImportProblem {
   if (format === 'empty') return new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.', file });
-  if (format === 'shapefile-part') return new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.', file });
+  if (format === 'shapefile-part') return new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Pack all parts with the same name into one ZIP and send that.', params: { why: 'shapefile-part' }, file });
   const found = foreignName ?? 'XML of a kind that is not read';
   const remedy = 'Send a GeoTIFF, a zipped shapefile, GeoPackage, GeoJSON, KML, KMZ, GPX or CSV.';
-  return new ImportProblem({ code: 'wrong-type', fact: `It is ${found}.`, remedy, params: { found }, file });
+  return new ImportProblem({ code: 'wrong-type', fact: `It is ${found}.`, remedy, params: { why: foreignKind(found), found }, file });
 }

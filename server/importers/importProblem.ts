@@ -8,6 +8,7 @@ export type ImportProblemCode =
   | 'too-large'
   | 'unsafe-archive'
   | 'encrypted'
+  | 'mask-misfit'
   | 'missing-part'
   | 'no-layer'
   | 'no-reference'

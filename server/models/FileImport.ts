@@ -6,7 +6,7 @@ export interface ImportMemory {
   file: UnderstoodFile | null;
   /** Questions that the reader had, answered ones too. */
   asked: ImportQuestion[];
-  companions: { worldFileText: string | null; projectionFileText: string | null };
+  companions: { worldFileText: string | null; projectionFileText: string | null; /** The mask that came beside the picture, kept as files are. */ maskSha256?: string | null };
   outlines: OfferedOutline[];
 }
 

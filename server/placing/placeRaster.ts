@@ -56,7 +56,7 @@ function isCanopyOnly({ purpose, canopy }: ImportAnswers): boolean {
 /** Blocks as canopy is read on them. Between rows a cell takes the canopy of the rows beside it. */
 function canopyGrids(blocks: readonly TargetBlock[], grids: readonly Grid[], { canopy }: ImportAnswers): CanopyGrid[] {
   if (canopy === 'rows' && blocks.every(({ rows }) => rows.length === 0)) {
-    throw new ImportProblem({ code: 'bad-request', fact: 'None of the blocks it covers has rows yet.', remedy: 'Lay the rows of the block first, or tell canopy by its index.' });
+    throw new ImportProblem({ code: 'bad-request', fact: 'None of the blocks it covers has rows yet.', remedy: 'Lay the rows of the block first, or tell canopy by its index.', params: { why: 'no-rows-yet' } });
   }
   return grids.map((grid, at) => ({
     grid,
@@ -125,7 +125,7 @@ export function placeOnBlocks({ blocks, grids, cells }: { blocks: readonly Targe
 function classesOf(placed: readonly PlacedCells[]): LayerClass[] {
   const codes = [...new Set(placed.flatMap((block) => (block.statistics.classes ?? []).map((entry) => entry.value)))].sort((a, b) => a - b);
   const odd = codes.find((code) => !Number.isInteger(code));
-  if (odd !== undefined) throw new ImportProblem({ code: 'bad-request', fact: `Its values are measurements (${odd}), not class numbers.`, remedy: 'Take it as numbers instead of classes.', params: { value: odd } });
-  if (codes.length > mostClasses) throw new ImportProblem({ code: 'bad-request', fact: `It has ${codes.length} different class numbers over the blocks; ${mostClasses} is the most.`, remedy: 'Take it as numbers instead of classes, or merge classes first.', params: { classes: codes.length, most: mostClasses } });
+  if (odd !== undefined) throw new ImportProblem({ code: 'bad-request', fact: `Its values are measurements (${odd}), not class numbers.`, remedy: 'Take it as numbers instead of classes.', params: { why: 'not-classes', value: odd } });
+  if (codes.length > mostClasses) throw new ImportProblem({ code: 'bad-request', fact: `It has ${codes.length} different class numbers over the blocks; ${mostClasses} is the most.`, remedy: 'Take it as numbers instead of classes, or merge classes first.', params: { why: 'many-classes', classes: codes.length, most: mostClasses } });
   return codes.map((value) => ({ value, name: String(value), colour: null }));
 }

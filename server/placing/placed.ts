@@ -6,6 +6,8 @@ import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts
 export interface Companions {
   worldFileText: string | null;
   projectionFileText: string | null;
+  /** Where the mask of a picture lies that came in a file of its own. */
+  maskPath: string | null;
 }
 
 /** A file on this machine and everything that was said about it. Crosses into a thread as a structured clone. */

@@ -378,6 +378,27 @@ describe('what was received', () => {
     expect(received.body.items[1]).toMatchObject({ fileId: null, problem: { code: 'wrong-type' } });
   });
 
+  it('a mask beside the picture takes out what it covers', async () => {
+    const mask = writeTiff({ width: 540, height: 160, type: 'u8', geo: null, value: (col) => (-10 + (col + 0.5) / 2 < 50 ? 0 : 255) });
+    const received = await upload({ name: 'masked.tif', bytes: picture((x) => 0.3 + x / 1000) }, { name: 'masked.tif.msk', bytes: mask });
+    expect(received.status, received.text).toBe(201);
+    expect(received.body.items).toHaveLength(1);
+    const answered = await answer(received.body.items[0].id, { purpose: 'soil', soilAs: 'number' });
+    expect(answered.body.state).toBe('ready');
+    await jobEnd(agent, base(), answered.body.jobId);
+    const { layers } = (await agent.get(`${base()}/imports/${received.body.items[0].id}`)).body;
+    const { cells, grid } = await cellsOf(layers[0].id, west.id);
+    let [masked, seen] = [0, 0];
+    cells.forEach((value, cell) => {
+      const x = grid.x0 + ((cell % grid.cols) + 0.5) * grid.cellSizeM - place.x;
+      if (x < 49) masked += Number.isNaN(value) ? 1 : 0;
+      if (x < 49) expect(value).toBeNaN();
+      else if (x > 51 && !Number.isNaN(value)) seen += 1;
+    });
+    expect(masked).toBeGreaterThan(500);
+    expect(seen).toBeGreaterThan(500);
+  });
+
   it('a world file and a projection file place the picture they came with', async () => {
     const bytes = picture((x) => 0.3 + x / 1000, { geo: null });
     const world = [0.5, 0, 0, -0.5, place.x - 10 + 0.25, place.y + 70 - 0.25].join('\n');

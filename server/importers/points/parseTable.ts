@@ -21,14 +21,14 @@ export function parseTable(text: string): ParsedTable {
   const quotes = parsed.errors.find(({ type }) => type === 'Quotes');
   if (quotes !== undefined) {
     const row = (quotes.row ?? 0) + 1;
-    throw new ImportProblem({ code: 'damaged', fact: `A quotation mark that opens in row ${row} is never closed, or stands inside a cell.`, remedy: 'Correct that row, or export the table again.', params: { row } });
+    throw new ImportProblem({ code: 'damaged', fact: `A quotation mark that opens in row ${row} is never closed, or stands inside a cell.`, remedy: 'Correct that row, or export the table again.', params: { why: 'open-quote', row } });
   }
-  if (parsed.data.length > limits.rows) throw new ImportProblem({ code: 'too-large', fact: `It has more than ${limits.rows} rows.`, remedy: 'Split the table, or thin out its points.' });
+  if (parsed.data.length > limits.rows) throw new ImportProblem({ code: 'too-large', fact: `It has more than ${limits.rows} rows.`, remedy: 'Split the table, or thin out its points.', params: { why: 'many-rows', most: limits.rows } });
   const all = parsed.data.map((cells, i) => ({ cells, number: i + 1 })).filter(({ cells }) => cells.some((cell) => cell !== ''));
   if (all.length === 0) throw new ImportProblem({ code: 'empty', fact: 'It has no rows.', remedy: 'Export the table again.' });
   const width = usualWidth(all.map(({ cells }) => cells.length));
-  if (width < 2) throw new ImportProblem({ code: 'wrong-type', fact: 'It has a single column: no comma, semicolon or tab separates its cells.', remedy: 'Save the table as CSV.' });
-  if (width > limits.columns) throw new ImportProblem({ code: 'too-large', fact: `It has ${width} columns; ${limits.columns} is the most.`, remedy: 'Keep only the columns that are needed.' });
+  if (width < 2) throw new ImportProblem({ code: 'wrong-type', fact: 'It has a single column: no comma, semicolon or tab separates its cells.', remedy: 'Save the table as CSV.', params: { why: 'single-column' } });
+  if (width > limits.columns) throw new ImportProblem({ code: 'too-large', fact: `It has ${width} columns; ${limits.columns} is the most.`, remedy: 'Keep only the columns that are needed.', params: { why: 'many-columns', columns: width, most: limits.columns } });
   return splitHeader(all, { separator, width });
 }
 

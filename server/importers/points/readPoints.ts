@@ -42,7 +42,7 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   const base = { kind: 'points' as const, separator: table.separator, decimalMark, encoding, hasHeader: table.hasHeader };
   if (columns === null) {
     const shapes = table.names.find((_, i) => table.rows.slice(0, 20).some((row) => /^(srid=\d+;)?(multi)?(point|linestring|polygon)\s*z?m?\s*\(/i.test(row[i] ?? '')));
-    if (shapes !== undefined) throw new ImportProblem({ code: 'no-coordinates', fact: `Its places are written as text (WKT) in the column "${shapes}".`, remedy: 'Export it as GeoJSON or GeoPackage, or with a column each for X and Y.', params: { column: shapes } });
+    if (shapes !== undefined) throw new ImportProblem({ code: 'no-coordinates', fact: `Its places are written as text (WKT) in the column "${shapes}".`, remedy: 'Export it as GeoJSON or GeoPackage, or with a column each for X and Y.', params: { why: 'places-as-text', column: shapes } });
     const isReadings = namesRowsAndVines(table.names);
     if (isReadings) warnings.push({ code: 'rows-and-vines', text: 'It tells vines by row and number: readings of vines come in under "Earlier readings".' });
     const choices = numericColumns(table, decimalMark).map((name) => ({ value: name, label: name }));
@@ -52,7 +52,7 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   }
   const positions = readPositions(table, columns, { mark: decimalMark, swap: options.answers?.swapAxes === true });
   warnings.push(...positions.warnings);
-  if (positions.kept.length === 0) throw new ImportProblem({ code: 'no-coordinates', fact: `No row has a usable position in the columns "${table.names[columns.x]}" and "${table.names[columns.y]}".`, remedy: 'Check the columns, or export the table with decimal degrees.' });
+  if (positions.kept.length === 0) throw new ImportProblem({ code: 'no-coordinates', fact: `No row has a usable position in the columns "${table.names[columns.x]}" and "${table.names[columns.y]}".`, remedy: 'Check the columns, or export the table with decimal degrees.', params: { why: 'no-position-in', x: table.names[columns.x]!, y: table.names[columns.y]! } });
   const placed = place(positions, columns, options);
   const sample = evenly(positions.kept.map((_, i): [number, number] => [positions.x[i]!, positions.y[i]!]));
   const kept = positions.kept.filter((_, i) => placed.lonLat[i] !== null);

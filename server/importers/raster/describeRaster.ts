@@ -17,6 +17,8 @@ export interface RasterReadOptions extends ReadOptions {
   worldFileText?: string | null;
   /** Text of the .prj beside the file. */
   projectionFileText?: string | null;
+  /** Where the .msk beside the file lies. */
+  maskPath?: string | null;
 }
 
 /** What a GeoTIFF says about itself, with the questions it leaves open. Reads tags only. Throws ImportProblem. */
@@ -71,6 +73,7 @@ function placeOf(raster: OpenRaster, options: RasterReadOptions, warnings: Impor
   }
   const fromWorldFile = options.worldFileText === undefined || options.worldFileText === null ? null : worldFileTransform(options.worldFileText);
   if (fromWorldFile !== null) return { transform: fromWorldFile, isPoint: false };
+  const isWorldFileBad = placement.reason === 'none' && (options.worldFileText ?? null) !== null;
   const facts = {
     none: 'It is a picture without a place: it has no map coordinates.',
     'control-points': 'It is placed only by ground control points, which leaves its pixels bent.',
@@ -78,9 +81,9 @@ function placeOf(raster: OpenRaster, options: RasterReadOptions, warnings: Impor
   };
   throw new ImportProblem({
     code: 'no-placement',
-    fact: facts[placement.reason],
-    remedy: placement.reason === 'control-points' ? 'Rectify it in the program that made it and export it again as GeoTIFF.' : 'Export it as GeoTIFF, or send its world file (.tfw) along with it.',
-    params: { reason: placement.reason },
+    fact: isWorldFileBad ? 'Its world file does not hold the six numbers that place a picture.' : facts[placement.reason],
+    remedy: isWorldFileBad ? 'Export the picture again as GeoTIFF, or with its world file.' : placement.reason === 'control-points' ? 'Rectify it in the program that made it and export it again as GeoTIFF.' : 'Export it as GeoTIFF, or send its world file (.tfw) along with it.',
+    params: { why: isWorldFileBad ? 'world-file' : placement.reason === 'none' ? 'no-place' : placement.reason },
   });
 }
 
@@ -96,6 +99,7 @@ function referenceOf(raster: OpenRaster, { options, outline, questions, warnings
   const said = referenceFromGeoKeys(raster.tags.geoKeys);
   if (said.kind === 'known') {
     if (said.assumedDatum) warnings.push({ code: 'assumed-datum', text: `${said.reference.name} does not name its datum; it is taken as WGS 84, which its ellipsoid suggests.`, params: { name: said.reference.name } });
+    if (said.saidUnitM !== undefined) warnings.push({ code: 'unit-of-length', text: `It names ${said.reference.name} and says that its coordinates are counted in units of ${said.saidUnitM} m, which is not that system's own; they are taken so. Compare it with the block outline on the map.`, params: { name: said.reference.name, unit: String(Number(said.saidUnitM.toPrecision(7))) } });
     const datum = datumWarning(said.reference);
     if (datum !== null) warnings.push(datum);
     return said.reference;

@@ -115,10 +115,10 @@ export function notOverlapping(understood: RasterUnderstood, grids: readonly Gri
     code: 'not-overlapping',
     fact: `It does not cover ${grids.length === 1 ? 'the block' : 'any of the blocks'}: it lies ${shown} km away.`,
     remedy: 'Check that it is the right file, and that its reference system is the one it names.',
-    params: { km: Number(shown) },
+    params: { why: 'far', km: Number(shown) },
   });
 }
 
 export function noValues(blocks: number): ImportProblem {
-  return new ImportProblem({ code: 'no-values', fact: `It has no values over the ${blocks === 1 ? 'block' : 'blocks'}: every pixel there is marked as missing.`, remedy: 'Check that it is the right file and band, and that its mark for missing values is right.' });
+  return new ImportProblem({ code: 'no-values', fact: `It has no values over the ${blocks === 1 ? 'block' : 'blocks'}: every pixel there is marked as missing.`, remedy: 'Check that it is the right file and band, and that its mark for missing values is right.', params: { why: 'missing-here' } });
 }

@@ -22,7 +22,12 @@ export function inspectRaster(input: string | Uint8Array, options: RasterReadOpt
       const questions: ImportQuestion[] = [...described.questions];
       const warnings: ImportWarning[] = [...described.warnings];
       if (preview.bands.every(({ values }) => values.every(Number.isNaN))) {
-        throw new ImportProblem({ code: 'no-values', fact: 'It has no values: every pixel is marked as missing.', remedy: 'Check that it is the right file, and that its mark for missing values is right.' });
+        throw new ImportProblem({
+          code: 'no-values',
+          fact: raster.layout.format === 'float' ? 'It has no values: every pixel is marked as missing, is no number, or is larger than anything measured.' : 'It has no values: every pixel is marked as missing.',
+          remedy: 'Check that it is the right file, and that its mark for missing values is right.',
+          params: { why: 'all-missing' },
+        });
       }
       for (const band of preview.bands) {
         const found = checkValues(band, described.bands.find(({ index }) => index === band.index)!, { noDataAnswered: options.answers?.noData !== undefined, bands: preview.bands.length });

@@ -19,7 +19,7 @@ export interface PictureReader {
 
 export async function openPicture(raster: OpenRaster, request: PictureRequest, layout: RasterLayout = raster.layout): Promise<PictureReader> {
   const blocks = await openBlocks(raster.source, layout);
-  const mask = raster.mask === null || layout !== raster.layout ? null : new MaskReader(await openBlocks(raster.source, raster.mask));
+  const mask = raster.mask === null || layout !== raster.layout ? null : new MaskReader(await openBlocks(raster.mask.source, raster.mask.layout));
   const rules: MissingRules = { mask, dropHuge: request.dropHuge, dropDark: request.dropDark };
   return {
     layout,

@@ -30,7 +30,7 @@ function fromTags({ pixelScale, tiePoints, transformation }: GeoTags): Placement
     return placed([x - column * scaleX, scaleX, 0, y + row * down, 0, -down], scaleY < 0 ? 'negative-scale' : null);
   }
   if (tiePoints !== null && tiePoints.length >= 18) return fromCorners(tiePoints);
-  return { kind: 'unplaced', reason: 'none' };
+  return { kind: 'unplaced', reason: tiePoints !== null && tiePoints.length >= 6 ? 'control-points' : 'none' };
 }
 
 function placed(transform: PixelTransform, note: 'negative-scale' | 'corner-points' | null): Placement {

@@ -74,7 +74,7 @@ export function blockRowBytes(layout: RasterLayout): number {
 function checkCompression(code: number): string {
   const known = compressions.get(code);
   if (known === undefined) throw unsupported(`Its compression has the unknown number ${code}.`);
-  if (known.prepare === null) throw unsupported(`It is compressed as ${known.name}, which is not read because ${known.reason}.`);
+  if (known.prepare === null) throw unsupported(`It is compressed as ${known.name}, which is not read because ${known.reason}.`, { why: 'compression', name: known.name });
   return known.name;
 }
 
@@ -83,7 +83,7 @@ function readSampleKind(bitsOf: Float64Array | null, formatOf: Float64Array | nu
   if (bitsOf?.some((other) => other !== bits)) throw unsupported(`Its bands have different depths (${[...new Set(bitsOf)].join(', ')} bits).`);
   const code = formatOf?.[0] ?? 1;
   if (formatOf?.some((other) => other !== code)) throw unsupported('Its bands have different number types.');
-  if (code === 5 || code === 6) throw unsupported('Its values are complex numbers, as in radar data.');
+  if (code === 5 || code === 6) throw unsupported('Its values are complex numbers, as in radar data.', { why: 'complex' });
   const format = ({ 1: 'uint', 2: 'int', 3: 'float', 4: 'uint' } as const)[code];
   if (format === undefined) throw unsupported(`Its number type has the unknown code ${code}.`);
   const known = format === 'float' ? [16, 32, 64] : format === 'int' ? [8, 16, 32, 64] : null;
@@ -124,7 +124,7 @@ function smallerStrips(layout: RasterLayout): RasterLayout {
     code: 'too-large',
     fact: `One of its tiles or strips holds ${Math.round(size / 2 ** 20)} MB of pixels; ${limits.rasterBlockBytes / 2 ** 20} MB is the most that is read at once.`,
     remedy: 'Export it in tiles of 256 or 512 pixels.',
-    params: { mb: Math.round(size / 2 ** 20) },
+    params: { why: 'tile-size', mb: Math.round(size / 2 ** 20) },
   });
 }
 
@@ -151,6 +151,6 @@ function damaged(fact: string): ImportProblem {
   return new ImportProblem({ code: 'damaged', fact, remedy: 'Export the file again from the program that made it, or copy it again.' });
 }
 
-function unsupported(fact: string): ImportProblem {
-  return new ImportProblem({ code: 'unsupported-encoding', fact, remedy: 'Export it as an uncompressed, LZW or Deflate GeoTIFF with 8-, 16- or 32-bit values.' });
+function unsupported(fact: string, params: Readonly<Record<string, string>> = {}): ImportProblem {
+  return new ImportProblem({ code: 'unsupported-encoding', fact, remedy: 'Export it as an uncompressed, LZW or Deflate GeoTIFF with 8-, 16- or 32-bit values.', params });
 }

@@ -3,6 +3,7 @@ import { isPackerRubbish } from '../archive/zipDirectory.ts';
 import { fromBytes, withSource, type ByteSource } from '../byteSource.ts';
 import { ImportProblem } from '../importProblem.ts';
 import type { RasterReadOptions } from './describeRaster.ts';
+import { auxiliaryText, worldFileEnding } from './besidePicture.ts';
 import { openRaster, type OpenRaster } from './openRaster.ts';
 
 /**
@@ -11,9 +12,9 @@ import { openRaster, type OpenRaster } from './openRaster.ts';
  */
 export function withRaster<T>(input: string | Uint8Array, options: RasterReadOptions, use: (raster: OpenRaster, options: RasterReadOptions) => Promise<T>): Promise<T> {
   return withSource(input, async (source) => {
-    if (!startsAsZip(source)) return use(await openRaster(source), options);
+    if (!startsAsZip(source)) return (options.maskPath ?? null) === null ? use(await openRaster(source), options) : withSource(options.maskPath!, async (mask) => use(await openRaster(source, mask), options));
     const packed = unpack(source);
-    return use(await openRaster(fromBytes(packed.bytes)), { ...options, worldFileText: options.worldFileText ?? packed.worldFileText, projectionFileText: options.projectionFileText ?? packed.projectionFileText });
+    return use(await openRaster(fromBytes(packed.bytes), packed.mask === null ? null : fromBytes(packed.mask)), { ...options, worldFileText: options.worldFileText ?? packed.worldFileText, projectionFileText: options.projectionFileText ?? packed.projectionFileText });
   });
 }
 
@@ -26,19 +27,25 @@ interface PackedRaster {
   bytes: Uint8Array;
   worldFileText: string | null;
   projectionFileText: string | null;
+  mask: Uint8Array | null;
 }
 
 function unpack(source: ByteSource): PackedRaster {
   const archive = openZip(source);
   const names = tiffNames(source);
-  if (names.length !== 1) throw new ImportProblem({ code: 'no-layer', fact: `The archive holds ${names.length} TIFF files.`, remedy: 'Send them one at a time.', params: { count: names.length } });
+  if (names.length !== 1) throw new ImportProblem({ code: 'no-layer', fact: `The archive holds ${names.length} TIFF files.`, remedy: 'Send them one at a time.', params: { why: 'several-pictures', count: names.length } });
   const stem = names[0]!.replace(/\.[^.]*$/, '').toLowerCase();
-  const text = (ending: RegExp): string | null => {
-    const entry = archive.entries.find(({ name }) => ending.test(name) && name.replace(/\.[^.]*$/, '').toLowerCase() === stem);
-    return entry === undefined ? null : new TextDecoder().decode(archive.read(entry).subarray(0, 20_000));
+  const beside = (ending: RegExp): Uint8Array | null => {
+    const entry = archive.entries.find(({ name }) => ending.test(name) && [stem, names[0]!.toLowerCase()].includes(name.replace(ending, '').toLowerCase()));
+    return entry === undefined ? null : archive.read(entry);
   };
+  const text = (ending: RegExp): string | null => {
+    const bytes = beside(ending);
+    return bytes === null ? null : new TextDecoder().decode(bytes.subarray(0, 20_000));
+  };
+  const aux = auxiliaryText(text(/\.aux\.xml$/i));
   const bytes = archive.read(archive.entries.find(({ name }) => name === names[0])!);
-  return { bytes, worldFileText: text(/\.(tfw|tifw|wld)$/i), projectionFileText: text(/\.prj$/i) };
+  return { bytes, worldFileText: text(worldFileEnding) ?? aux.worldFileText, projectionFileText: text(/\.prj$/i) ?? aux.projectionFileText, mask: beside(/\.msk$/i) };
 }
 
 function startsAsZip(source: ByteSource): boolean {

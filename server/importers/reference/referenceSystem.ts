@@ -7,8 +7,12 @@ import { ImportProblem } from '../importProblem.ts';
 import type { ImportWarning, ReferenceSystem } from '../understood.ts';
 import { readWkt } from './wktDefinition.ts';
 
+/** Codes of Web Mercator from before it had its own. */
+const webMercator: ReadonlySet<number> = new Set([3785, 102100, 102113, 900913]);
+
 /** The shipped system of an EPSG code, or null. */
-export function referenceFromEpsg(epsg: number, from: ReferenceSystem['from']): ReferenceSystem | null {
+export function referenceFromEpsg(code: number, from: ReferenceSystem['from']): ReferenceSystem | null {
+  const epsg = webMercator.has(code) ? 3857 : code;
   const shipped = crsDefinition(epsg);
   return shipped === null ? null : { epsg, name: shipped.name, definition: shipped.proj4, unitM: shipped.unitM, from };
 }

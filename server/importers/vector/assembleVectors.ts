@@ -34,7 +34,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const notes = noNotes();
   const cleaned = layers.map((layer) => ({ name: layer.name, features: layer.features.map((feature) => ({ properties: feature.properties, geometry: feature.geometry === null ? null : cleanGeometry(feature.geometry, notes) })) }));
   const outline = boxOf(cleaned);
-  if (outline === null) throw new ImportProblem({ code: 'no-layer', fact: layers.every(({ features }) => features.length === 0) ? 'It holds no shapes.' : 'None of its shapes has usable coordinates.', remedy: 'Export the layer again and check that it is not empty.' });
+  if (outline === null) throw new ImportProblem({ code: 'no-layer', fact: layers.every(({ features }) => features.length === 0) ? 'It holds no shapes.' : 'None of its shapes has usable coordinates.', remedy: 'Export the layer again and check that it is not empty.', params: { why: layers.every(({ features }) => features.length === 0) ? 'no-shapes' : 'no-usable-shapes' } });
   const reference = options.answers?.epsg === undefined ? named : referenceFromAnswer(options.answers.epsg);
   const swapped = reference === null ? null : axesQuestion(outline, reference, options);
   if (swapped !== null) questions.push(swapped);

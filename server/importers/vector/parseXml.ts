@@ -17,7 +17,7 @@ export function parseXml(text: string, rootName: string): Document {
 
 function parse(text: string): Document {
   const fail = (detail: string): never => {
-    throw new ImportProblem({ code: 'damaged', fact: `It is not valid XML (${detail.split('\n')[0]!.slice(0, 120)}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { detail: detail.slice(0, 120) } });
+    throw new ImportProblem({ code: 'damaged', fact: `It is not valid XML (${detail.split('\n')[0]!.slice(0, 120)}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { why: 'not-whole-text', detail: detail.slice(0, 120) } });
   };
   const parser = new DOMParser({ onError: (level, message) => (level === 'warning' ? undefined : fail(String(message))) });
   try {

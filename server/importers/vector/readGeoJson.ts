@@ -39,7 +39,7 @@ function parse(text: string): unknown {
     const sequence = featureSequence(text);
     if (sequence !== null) return sequence;
     const detail = error instanceof Error ? error.message.slice(0, 120) : '';
-    throw new ImportProblem({ code: 'damaged', fact: `It is not valid JSON (${detail}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { detail }, cause: error });
+    throw new ImportProblem({ code: 'damaged', fact: `It is not valid JSON (${detail}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { why: 'not-whole-text', detail }, cause: error });
   }
 }
 

@@ -1,24 +1,31 @@
-import { readSmallText, type Upload } from '../../storage/uploads.ts';
+import { auxiliaryText, worldFileEnding } from '../../importers/raster/besidePicture.ts';
 import type { Companions } from '../../placing/placed.ts';
+import { readSmallText, type Upload } from '../../storage/uploads.ts';
 
 export interface Accompanied {
   upload: Upload;
   companions: Companions;
 }
 
-const worldFile = /\.(tfw|tifw|tiffw|wld)$/i;
 const projectionFile = /\.prj$/i;
+const auxiliaryFile = /\.aux\.xml$/i;
+const mask = /\.msk$/i;
 const picture = /\.tiff?$/i;
+const endings = [worldFileEnding, projectionFile, auxiliaryFile, mask];
 
-/** World and projection files go with the picture of the same name that came along; alone they are files like any other. */
+/** World, projection and auxiliary files and the mask go with the picture of the same name that came along; alone they are files like any other. */
 export async function withCompanions(uploads: readonly Upload[]): Promise<Accompanied[]> {
-  const stem = (upload: Upload) => upload.name.replace(/\.[^.]*$/, '').toLowerCase();
-  const pictures = new Set(uploads.filter((upload) => picture.test(upload.name)).map(stem));
-  const goesAlong = (upload: Upload) => (worldFile.test(upload.name) || projectionFile.test(upload.name)) && pictures.has(stem(upload));
+  const pictures = uploads.filter((upload) => picture.test(upload.name));
+  // Some are named field.tfw, some field.tif.msk.
+  const belongs = (upload: Upload, ending: RegExp, to: Upload) => ending.test(upload.name) && [to.name, to.name.replace(picture, '')].some((name) => name.toLowerCase() === upload.name.replace(ending, '').toLowerCase());
+  const goesAlong = (upload: Upload) => endings.some((ending) => pictures.some((each) => belongs(upload, ending, each)));
   return Promise.all(
     uploads.filter((upload) => !goesAlong(upload)).map(async (upload) => {
-      const beside = (pattern: RegExp) => (picture.test(upload.name) ? uploads.find((other) => pattern.test(other.name) && stem(other) === stem(upload)) : undefined);
-      return { upload, companions: { worldFileText: await readSmallText(beside(worldFile)), projectionFileText: await readSmallText(beside(projectionFile)) } };
+      const beside = (ending: RegExp) => (picture.test(upload.name) ? uploads.find((other) => belongs(other, ending, upload)) : undefined);
+      const auxiliary = auxiliaryText(await readSmallText(beside(auxiliaryFile)));
+      const worldFileText = (await readSmallText(beside(worldFileEnding))) ?? auxiliary.worldFileText;
+      const projectionFileText = (await readSmallText(beside(projectionFile))) ?? auxiliary.projectionFileText;
+      return { upload, companions: { worldFileText, projectionFileText, maskPath: beside(mask)?.path ?? null } };
     }),
   );
 }

@@ -70,22 +70,25 @@ async function requireMeeting(access: Access, fileName: string, described: Descr
 export async function requireOverBlocks(estateId: string, fileName: string, outline: readonly (readonly [number, number])[]): Promise<void> {
   const { covers, nearestKm } = await blocksUnder(estateId, outline);
   if (covers.length > 0) return;
-  if (nearestKm === null) throw new ImportProblem({ code: 'not-overlapping', fact: 'This estate has no blocks yet that it could lie on.', remedy: 'Make a block first, then send the file again.', file: fileName });
+  if (nearestKm === null) throw new ImportProblem({ code: 'not-overlapping', fact: 'This estate has no blocks yet that it could lie on.', remedy: 'Make a block first, then send the file again.', params: { why: 'no-blocks-yet' }, file: fileName });
   const shown = nearestKm < 10 ? Math.max(0.1, nearestKm).toFixed(1) : String(Math.round(nearestKm));
   throw new ImportProblem({
     code: 'not-overlapping',
     fact: `It does not cover any of the blocks: the nearest is ${shown} km away.`,
     remedy: 'Check that it is the right file, and that its reference system is the one it names.',
-    params: { km: Number(shown) },
+    params: { why: 'far', km: Number(shown) },
     file: fileName,
   });
 }
 
 async function keep(access: Access, { upload, companions }: Received, described: Described): Promise<FileImport> {
   const { sha256, bytes } = await fileStore().keep(upload.path);
-  const understood: ImportMemory = { file: described.file, asked: described.questions, companions, outlines: [] };
+  const { maskPath, ...texts } = companions;
+  const mask = maskPath === null ? null : await fileStore().keep(maskPath);
+  const understood: ImportMemory = { file: described.file, asked: described.questions, companions: { ...texts, maskSha256: mask?.sha256 ?? null }, outlines: [] };
   return FileImport.transaction(async (trx) => {
     const file = await StoredFile.query(trx).insert({ estateId: access.estateId, sha256, bytes, originalName: storable(upload.name).slice(0, longestName), uploadedBy: access.personId });
+    if (mask !== null) await StoredFile.query(trx).insert({ estateId: access.estateId, ...mask, originalName: storable(`${upload.name}.msk`).slice(0, longestName), uploadedBy: access.personId });
     const record = await FileImport.query(trx).insert(
       storable({ estateId: access.estateId, fileId: file.id, fileName: shownFileName(upload.name), format: described.format, state: 'asks' as const, understood, answers: {}, warnings: described.notes, problem: null, createdBy: access.personId }),
     );

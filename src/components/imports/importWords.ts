@@ -50,13 +50,15 @@ function coversWords(line: ImportView, { t, format }: Pick<Words, 't' | 'format'
   return t('imports.liesOn', { blocks: format.list(more > 0 ? [...named, t('imports.moreBlocks', { n: format.number(more) }, more)] : named) });
 }
 
-/** A note or a refusal in the reader's language where we have the sentence, else as the reader of the file said it. */
+/** A note or a refusal in the reader's language where we have the sentence, for a refusal the nearest one to its reason; else as the reader of the file said it. */
 export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te, format }: Words): { text: string; detail: string | null } {
-  const key = `imports.${kind}.${note.code}`;
+  const why = `imports.why.${note.params.why ?? ''}`;
+  const isExact = kind === 'problem' && note.params.why !== undefined && te(why);
+  const key = isExact ? why : `imports.${kind}.${note.code}`;
   if (!te(key)) return { text: note.text, detail: null };
   const named = Object.fromEntries(Object.entries(note.params).map(([name, value]) => [name, typeof value === 'number' ? format.number(value, Number.isInteger(value) ? 0 : 2) : value]));
   const count = note.params.count ?? note.params.shapes;
-  return { text: typeof count === 'number' ? t(key, named, count) : t(key, named), detail: kind === 'problem' ? note.text : null };
+  return { text: typeof count === 'number' ? t(key, named, count) : t(key, named), detail: kind === 'problem' && !isExact ? note.text : null };
 }
 
 /** The words of an answer: the file's own, or ours for the value. */

@@ -5,6 +5,7 @@ import { estateLonLat, type CorpusCase } from './corpus.ts';
 import { databaseCases } from './corpusDatabases.ts';
 import { pointCases } from './corpusPoints.ts';
 import { rasterCases } from './corpusRasters.ts';
+import { referenceCases } from './corpusReferences.ts';
 import { vectorCases } from './corpusVectors.ts';
 
 /** Every file ends as its row says, within this much computing; a busy machine may take longer by the clock. */
@@ -55,6 +56,10 @@ describe('rasters of every kind and damage', () => {
   it.each(rasterCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
 });
 
+describe('places and reference systems of every kind', () => {
+  it.each(referenceCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
+});
+
 describe('outlines, soil maps and archives of every kind and damage', () => {
   it.each(vectorCases.map((each) => [each.title, each] as const))('%s', (_, each) => check(each), TEST_MS);
 });
@@ -68,5 +73,5 @@ describe('tables of points of every kind and damage', () => {
 });
 
 it('the corpus has at least 150 files', () => {
-  expect(rasterCases.length + vectorCases.length + databaseCases.length + pointCases.length).toBeGreaterThanOrEqual(150);
+  expect(rasterCases.length + referenceCases.length + vectorCases.length + databaseCases.length + pointCases.length).toBeGreaterThanOrEqual(150);
 });

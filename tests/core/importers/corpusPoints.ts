@@ -44,7 +44,7 @@ export const pointCases: readonly CorpusCase[] = [
   table('positions of a receiver, packed', 'lat,ns,lon,ew,ec\n4442.186,N,00300.066,E,5\n', accepted('degrees-minutes')),
   table('an overview beside a picture', 'II', refused('wrong-type', /overview/), { fileName: 'field.tif.ovr' }),
   table('statistics beside a picture', '<PAMDataset></PAMDataset>', refused('wrong-type', /beside a picture/), { fileName: 'field.tif.aux.xml' }),
-  table('a mask beside a picture', 'II', refused('wrong-type', /mask inside/), { fileName: 'field.tif.msk' }),
+  table('a mask beside a picture', 'II', refused('wrong-type', /without the picture/), { fileName: 'field.tif.msk' }),
   table('one column', 'lat\n44.7031\n44.7032\n', refused('wrong-type', /single column/)),
   table('words only', 'name,kind\nOak,tree\nAsh,tree\n', refused('no-coordinates', /None of its columns/)),
   table('a header and nothing else', 'lat,lon,ec\n', refused('no-coordinates', /usable position/)),

@@ -5,7 +5,7 @@ import type { LabAnswers, RawCell, RawLabFile } from '../lab/file/labFile.ts';
 import { chooseSheet, findUnlabelledTable, type LabTable } from '../lab/file/layout.ts';
 import { Asking } from '../lab/file/questions.ts';
 import { readValues, type DoubtfulCell } from '../lab/file/readValues.ts';
-import { mendShifts } from '../lab/file/shifts.ts';
+import { mendMarks } from '../lab/file/shifts.ts';
 import { placeColumns, withoutPlace } from './columns.ts';
 import type { EarlierEntry, EarlierSurroundings, RefusedPart, UnderstoodEarlier } from './earlierTable.ts';
 import { lineList } from './lineList.ts';
@@ -36,7 +36,7 @@ export function understandEarlier(file: RawLabFile, around: EarlierSurroundings,
   if (loose.values.length === 0 && asking.questions.every(({ answer }) => answer !== null)) asking.say('noMeasures');
   const days = daysOf(lines, loose.dateColumn, around, asking, answers);
   const places = placesOfLines({ ...table, rows: lines }, columns, around, asking);
-  const values = mendShifts(loose.values, around.measures, asking);
+  const values = mendMarks(loose.values, around.measures, asking);
   if (places === null || values === null || days === null) return done({ entries: [], refused });
   const usable = new Set<number>();
   for (const { line, cells } of lines) {

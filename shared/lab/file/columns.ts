@@ -1,11 +1,13 @@
 import { groupBy } from '../../groupBy.ts';
 import { unitsOf } from '../units.ts';
 import { readFigure } from '../figure.ts';
-import { cellText, isBlank, looksNumeric } from './cells.ts';
+import { cellText, isBlank, looksNumeric, plainText } from './cells.ts';
 import type { LabTable } from './layout.ts';
 import type { LabMeasure, RawCell } from './labFile.ts';
 import { isPlausible } from './plausible.ts';
 import type { Asking } from './questions.ts';
+import { joinQualifiers } from './qualifiers.ts';
+import { mendLines } from './lineShifts.ts';
 import { mendTitles } from './shifts.ts';
 import { mendSwap } from './swaps.ts';
 import { isFahrenheit, roleOfTitle, unitOfWord } from './titles.ts';
@@ -35,11 +37,11 @@ const mostly = 0.7;
 
 /** Which columns hold what, asked where neither title nor figures tell; a file with one result a line is read by its words. */
 export function looseValues(found: LabTable, measures: readonly LabMeasure[], asking: Asking): LooseTable {
-  const table = mendSwap(mendTitles(found, measures, asking), measures, asking);
+  const table = mendLines(mendSwap(mendTitles(joinQualifiers(found, asking), measures, asking), measures, asking), measures, asking);
   const roles = table.titles.map((title) => roleOfTitle(title, measures));
   const at = (kind: string) => roles.findIndex((role, column) => role.kind === kind && column !== table.codeColumn);
   const temperatureColumn = at('temperature') < 0 ? null : at('temperature');
-  const parts = { dateColumn: at('date') < 0 ? null : at('date'), temperatureColumn, isFahrenheit: temperatureColumn !== null && isFahrenheit(table.titles[temperatureColumn] ?? '') };
+  const parts = { dateColumn: dayColumn(table.titles.filter((_, column) => roles[column]!.kind === 'date' && column !== table.codeColumn), table), temperatureColumn, isFahrenheit: temperatureColumn !== null && isFahrenheit(table.titles[temperatureColumn] ?? '') };
   const wordColumn = longColumn(table, measures);
   if (wordColumn !== null) return { ...parts, ...readLong(table, { measures, wordColumn, asking }) };
   const values: LooseValue[] = [];
@@ -55,16 +57,26 @@ export function looseValues(found: LabTable, measures: readonly LabMeasure[], as
   return { values, ...parts };
 }
 
+/** The day of analysis; where a file has several days, not the one on which fruit was picked or came in. */
+function dayColumn(titles: readonly string[], { titles: all }: LabTable): number | null {
+  const isOther = (title: string) => /recei|recu|recep|recib|ricev|sampl|prelev|collect|pick|toma|muestreo|campionam|recolh|colhe|vendim/.test(plainText(title));
+  const title = titles.find((each) => !isOther(each)) ?? titles[0];
+  return title === undefined ? null : all.indexOf(title);
+}
+
 /** A column of words that name measures, one result a line. */
 function longColumn(table: LabTable, measures: readonly LabMeasure[]): number | null {
   for (const column of table.titles.keys()) {
     if (column === table.codeColumn) continue;
     const texts = table.rows.map(({ cells }) => cells[column]).filter((cell) => !isBlank(cell));
-    const named = texts.filter((cell) => typeof cell === 'string' && !looksNumeric(cell) && roleOfTitle(cell, measures).kind === 'measure');
+    const named = texts.filter((cell) => typeof cell === 'string' && !startsWithFigure(cell) && roleOfTitle(cell, measures).kind === 'measure');
     if (texts.length >= 2 && named.length >= mostly * texts.length) return column;
   }
   return null;
 }
+
+/** "23,1 °Brix" is a figure with its unit, though it names a measure. */
+const startsWithFigure = (cell: string) => /^[<≤>≥~≈]?\s*[+-]?[.,]?\d/.test(cell.trim());
 
 function readLong(table: LabTable, { measures, wordColumn, asking }: { measures: readonly LabMeasure[]; wordColumn: number; asking: Asking }): { values: LooseValue[] } {
   const roles = table.titles.map((title) => roleOfTitle(title, measures).kind);

@@ -100,5 +100,5 @@ export interface UnderstoodLabFile {
 
 /** Answers that hold for the next file of the same laboratory too; others are about one row or one accident. */
 export function isRemembered(key: string): boolean {
-  return /^(sheet|codeColumn|decimal|dateOrder|compensates|repeats|column:|unit:)/.test(key);
+  return /^(sheet|codeColumn|decimal|dateOrder|compensates|repeats|columns?:|unit:)/.test(key);
 }

@@ -7,6 +7,19 @@ import type { Asking } from './questions.ts';
 const notASample = /^(mean|average|avg|moyenne|media|promedio|mittel|sd|ecart|std|stdev|blank|blanc|blanco|bianco|branco|control|controle|qc|standard|etalon|patron|total|sum|n|min|max|cv)\b/;
 const mostRows = 30;
 
+/** A word beside the label that says that the line sums up others, so that a mean is no further reading of the bag. */
+const meanWord = /^(mean|average|avg|moyenne|moy|media|promedio|prom|mittel|mittelwert|durchschnitt|mw)\.?$/;
+
+/** Lines of single readings; means that carry the label of their bag are said to be left out. */
+export function withoutMeans<Row extends { readonly line: number; readonly cells: readonly RawCell[] }>(rows: readonly Row[], codeColumn: number, asking: Asking): Row[] {
+  return rows.filter(({ line, cells }) => {
+    const word = cells.find((cell, column) => column !== codeColumn && typeof cell === 'string' && meanWord.test(plainText(cell)));
+    if (word === undefined || labelIn(cells[codeColumn]) === null) return true;
+    asking.say('notASample', { line, text: `${cellText(cells[codeColumn])} ${cellText(word)}` });
+    return false;
+  });
+}
+
 interface LabelRow {
   readonly line: number;
   readonly cell: RawCell;

@@ -1,6 +1,6 @@
 import { readFigure } from '../figure.ts';
 import { unitsOf } from '../units.ts';
-import { cellText, isBlank } from './cells.ts';
+import { cellText } from './cells.ts';
 import type { LooseValue } from './columns.ts';
 import type { LabMeasure, RawCell } from './labFile.ts';
 import type { LabTable } from './layout.ts';
@@ -40,7 +40,7 @@ export function mendTitles(table: LabTable, measures: readonly LabMeasure[], ask
   return { ...table, titles };
 }
 
-const stepWord = (by: number) => (by > 0 ? 'next' : 'before');
+export const stepWord = (by: number) => (by > 0 ? 'next' : 'before');
 
 /** A cell's number whatever its decimal mark is; NaN for none. */
 export function roughNumber(cell: RawCell | undefined): number {
@@ -48,42 +48,14 @@ export function roughNumber(cell: RawCell | undefined): number {
   return figure.kind === 'number' ? figure.value : figure.kind === 'ambiguous' ? figure.asDecimal : Number.NaN;
 }
 
-/** Single lines that stand one column aside, and columns that lost their decimal mark (342 for 3.42). */
-export function mendShifts(values: readonly LooseValue[], measures: readonly LabMeasure[], asking: Asking): LooseValue[] | null {
+/** Columns of whole numbers, ten, hundred or thousand times too large throughout (342 for 3.42). Null while one is asked about. */
+export function mendMarks(values: readonly LooseValue[], measures: readonly LabMeasure[], asking: Asking): LooseValue[] | null {
   const byCode = new Map(measures.map((measure) => [measure.code, measure]));
-  const fits: Fits = (value, by) => isPlausible(byCode.get(value.measure)!, value.unit, numberAt(value, by));
-  const isWide = new Set(values.map(({ column }) => column)).size >= 2;
-  return mendMarks(isWide ? mendLines(values, fits, asking) : values, byCode, asking);
-}
-
-type Fits = (value: LooseValue, by: number) => boolean;
-
-const numberAt = ({ rowCells, column }: LooseValue, by: number) => roughNumber(rowCells[column + by]);
-
-function stepped(value: LooseValue, by: number): LooseValue {
-  return by === 0 ? value : { ...value, cell: value.rowCells[value.column + by] ?? null };
-}
-
-/** Lines whose figures all fit one column further and none where they stand. */
-function mendLines(values: readonly LooseValue[], fits: Fits, asking: Asking): LooseValue[] {
-  const lines = new Set(values.map(({ line }) => line));
-  return [...lines].flatMap((line) => {
-    const own = values.filter((value) => value.line === line);
-    const fitAll = (step: number) => own.filter(({ rowCells, column }) => !isBlank(rowCells[column + step])).every((value) => fits(value, step));
-    const by = own.length < 2 || own.some((value) => fits(value, 0)) ? undefined : [1, -1].find(fitAll);
-    if (by === undefined) return own;
-    const answer = asking.ask(`moved:${line}`, { code: 'moved', params: { line, found: own.map(({ cell }) => cellText(cell)).join('; ') }, choices: [stepWord(by), 'leaveOut', 'stay'], suggestion: stepWord(by) });
-    return answer === null || answer === 'leaveOut' ? [] : own.map((value) => stepped(value, answer === 'stay' ? 0 : by));
-  });
-}
-
-/** A column of whole numbers, ten, hundred or thousand times too large throughout. */
-function mendMarks(values: readonly LooseValue[], byCode: ReadonlyMap<string, LabMeasure>, asking: Asking): LooseValue[] | null {
   const out: LooseValue[] = [];
   let isOpen = false;
   for (const title of new Set(values.map((value) => value.title))) {
     const own = values.filter((value) => value.title === title);
-    const numbers = own.map((value) => numberAt(value, 0)).filter((number) => !Number.isNaN(number));
+    const numbers = own.map((value) => roughNumber(value.cell)).filter((number) => !Number.isNaN(number));
     const measure = byCode.get(own[0]!.measure)!;
     const fit = (by: number) => numbers.filter((number) => isPlausible(measure, own[0]!.unit, number / by)).length / Math.max(1, numbers.length);
     const by = numbers.length >= 2 && numbers.every(Number.isInteger) && fit(1) < 0.2 ? [10, 100, 1000].find((step) => fit(step) > 0.8) : undefined;

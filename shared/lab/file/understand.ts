@@ -4,12 +4,13 @@ import { plainText } from './cells.ts';
 import { readDates } from './dates.ts';
 import { settleHidden } from './hiddenCells.ts';
 import type { LabAnswers, LabEntry, LabSurroundings, RawLabFile, UnderstoodLabFile } from './labFile.ts';
-import { matchLabels } from './labels.ts';
+import { matchLabels, withoutMeans } from './labels.ts';
 import { chooseSheet, findTable } from './layout.ts';
 import { mendRows } from './mendRows.ts';
 import { Asking } from './questions.ts';
 import { readValues } from './readValues.ts';
-import { mendShifts } from './shifts.ts';
+import { settleColumns } from './sameMeasure.ts';
+import { mendMarks } from './shifts.ts';
 
 /**
  * What a laboratory's file says, with the answers given so far: sentences on how it was read, questions where it can be
@@ -28,7 +29,8 @@ const nothing = { list: [] as LabEntry[], titles: [] as readonly string[] };
 function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { list: LabEntry[]; titles: readonly string[] } {
   const sheet = chooseSheet(file, asking);
   const mended = sheet && mendRows(file, settleHidden(sheet, asking), asking);
-  const table = mended && findTable(mended, asking);
+  const found = mended && findTable(mended, asking);
+  const table = found && { ...found, rows: withoutMeans(found.rows, found.codeColumn, asking) };
   if (!table) {
     if (asking.questions.length === 0) asking.say('noResults');
     return nothing;
@@ -37,7 +39,7 @@ function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { 
   const filled = new Set(loose.values.map(({ line }) => line));
   const labels = matchLabels(table.rows.filter(({ line }) => filled.has(line)).map(({ line, cells }) => ({ line, cell: cells[table.codeColumn] ?? null })), around.labels, asking);
   const sampled = loose.values.filter(({ line }) => labels.has(line));
-  const values = mendShifts(sampled, around.measures, asking);
+  const values = mendMarks(settleColumns(sampled, asking), around.measures, asking);
   const dates = readDates(new Map(loose.dateColumn === null ? [] : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null])), { earliest: earliestClosing(around, labels), today: around.today }, asking);
   if (loose.values.length === 0 && asking.questions.length === 0) asking.say('noResults');
   if (values === null) return { list: [], titles: table.titles };

@@ -1,7 +1,9 @@
 /**
  * Refractometers are defined at 20 °C. Instruments that compensate must not be corrected again, so the first answer
- * is a question. From 5 to 20 °C the correction is that of table I of OIV method OIV-MA-AS2-02. Above 20 °C it is a band
- * (0.06 to 0.09 °Brix a degree, growing with sugar) from memory of the rest of that table, hence the wider range.
+ * is a question. From 5 to 20 °C the correction is that of table I of OIV method OIV-MA-AS2-02. Above 20 °C the table was
+ * not at hand: its rows from 10 to 17 °C are continued through 20 °C by a parabola (least squares, within 0.006 of every one
+ * of these rows), with a range that widens with the square of the distance. The refractive index of water, continued the
+ * same way, is 0.04 °Brix off at 30 °C.
  */
 export type RefractometerAnswer =
   | { readonly kind: 'asRead'; readonly brix: number }
@@ -9,9 +11,12 @@ export type RefractometerAnswer =
   | { readonly kind: 'ask' }
   | { readonly kind: 'corrected'; readonly low: number; readonly middle: number; readonly high: number };
 
-const LOW_PER_DEGREE = 0.06;
-const HIGH_PER_DEGREE = 0.09;
 const REFERENCE_C = 20;
+
+/** °Brix a degree and a squared degree, for 10, 15, 20, 25 and 30 °Brix as read. */
+const warmCurves = [[0.06916, 0.001019], [0.06975, 0.000754], [0.07158, 0.000667], [0.07266, 0.000544], [0.07523, 0.00061]];
+/** By how much the continued curve may be off, besides the rounding of the table. */
+const WARM_ERROR_PER_SQUARED_DEGREE = 0.0005;
 
 /** What is taken off at 5, 10, 15 and 20 °C, for 10, 15, 20, 25 and 30 °Brix as read; between them a straight line is within 0.03 of the table (0.01 from 15 °Brix on). */
 const coldStepC = 5;
@@ -36,8 +41,17 @@ export function correctRefractometer({ brix, temperatureC, compensates }: Refrac
     const middle = brix - coldCorrection(brix, temperatureC);
     return { kind: 'corrected', low: middle - TABLE_ERROR, middle, high: middle + TABLE_ERROR };
   }
-  const ends = [brix + degrees * LOW_PER_DEGREE, brix + degrees * HIGH_PER_DEGREE];
-  return { kind: 'corrected', low: Math.min(...ends), middle: (ends[0]! + ends[1]!) / 2, high: Math.max(...ends) };
+  const middle = brix + warmCorrection(brix, degrees);
+  const error = TABLE_ERROR + WARM_ERROR_PER_SQUARED_DEGREE * degrees * degrees;
+  return { kind: 'corrected', low: middle - error, middle, high: middle + error };
+}
+
+/** Straight lines between the curves around; beyond 10 and 30 °Brix the nearest one. Below 5 °C, where the table ends, it serves as well. */
+function warmCorrection(brix: number, degrees: number): number {
+  const column = Math.min(4, Math.max(0, brix / brixStep - 2));
+  const left = Math.min(3, Math.floor(column));
+  const at = (index: number) => warmCurves[index]![0]! * degrees + warmCurves[index]![1]! * degrees * degrees;
+  return at(left) * (1 - (column - left)) + at(left + 1) * (column - left);
 }
 
 /** Straight lines between the four values around; beyond 10 and 30 °Brix the nearest column. */

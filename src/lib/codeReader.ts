@@ -1,3 +1,5 @@
+import type { CornerSquares, Picture } from './slantedCode.ts';
+
 /** Codes in a picture of the camera. */
 export type CodeReader = (video: HTMLVideoElement) => Promise<string[]>;
 
@@ -27,7 +29,7 @@ export async function codeReader(): Promise<CodeReader> {
 const longestPx = 800;
 
 async function scriptReader(): Promise<CodeReader> {
-  const { decodeQR } = await import('qr/decode.js');
+  const [{ decodeQR }, { straightened }] = await Promise.all([import('qr/decode.js'), import('./slantedCode.ts')]);
   const canvas = document.createElement('canvas');
   const paint = canvas.getContext('2d', { willReadFrequently: true })!;
   return (video) => {
@@ -36,15 +38,29 @@ async function scriptReader(): Promise<CodeReader> {
     const scale = Math.min(1, longestPx / Math.max(videoWidth, videoHeight));
     [canvas.width, canvas.height] = [Math.round(videoWidth * scale), Math.round(videoHeight * scale)];
     paint.drawImage(video, 0, 0, canvas.width, canvas.height);
-    return Promise.resolve(codesIn(paint.getImageData(0, 0, canvas.width, canvas.height), decodeQR));
+    return Promise.resolve(codesIn(paint.getImageData(0, 0, canvas.width, canvas.height), { decodeQR, straightened }));
   };
 }
 
-/** What a picture says, or nothing: the reader throws where it finds no code, which is most pictures. */
-export function codesIn(picture: { width: number; height: number; data: Uint8ClampedArray }, decode: (picture: { width: number; height: number; data: Uint8ClampedArray }) => string): string[] {
-  try {
-    return [decode(picture)];
-  } catch {
-    return [];
-  }
+interface ScriptParts {
+  readonly decodeQR: (picture: Picture, options?: { pointsOnDetect?: (corners: CornerSquares) => void }) => string;
+  readonly straightened: (picture: Picture, corners: CornerSquares) => Picture | null;
+}
+
+/**
+ * What a picture says, or nothing: the reader throws where it finds no code, which is most pictures. Where it saw the
+ * corners of a code and could not read it, the phone was held at a slant: then once more, looked at from straight above.
+ */
+export function codesIn(picture: Picture, { decodeQR, straightened }: ScriptParts): string[] {
+  let corners: CornerSquares | null = null;
+  const read = (seen: Picture, options?: { pointsOnDetect: (found: CornerSquares) => void }) => {
+    try {
+      return [decodeQR(seen, options)];
+    } catch {
+      return [];
+    }
+  };
+  const found = read(picture, { pointsOnDetect: (seen) => (corners = seen) });
+  const straight = found.length === 0 && corners !== null ? straightened(picture, corners) : null;
+  return straight === null ? found : read(straight);
 }

@@ -41,10 +41,12 @@ export type VineFinding = z.infer<typeof vineFinding>;
 export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).default([]), findings: z.array(z.unknown()).max(500).default([]) });
 
 /** Why something that came from a phone was not stored: phones have the words in five languages. */
-export const refusalCode = z.enum(['blockElsewhere', 'noSuchMeasure', 'otherUnit', 'rowElsewhere', 'notYourRound', 'needsRound', 'readerUnknown', 'bagElsewhere', 'correctsUnknown', 'noSeason', 'otherContent']);
+export const refusalCode = z.enum(['blockElsewhere', 'noSuchMeasure', 'otherUnit', 'rowElsewhere', 'notYourRound', 'needsRound', 'readerUnknown', 'bagElsewhere', 'correctsUnknown', 'noSeason', 'otherContent', 'noSuchVine']);
 export interface Refusal {
   readonly code: z.infer<typeof refusalCode>;
   readonly reason: string;
+  /** What the words of the code name: a row, its vines. */
+  readonly facts?: Readonly<Record<string, string | number>>;
 }
 
 export const readingOutcome = z.object({
@@ -53,6 +55,7 @@ export const readingOutcome = z.object({
   state: z.enum(['received', 'conflict', 'refused']),
   reason: z.string().nullable(),
   code: refusalCode.optional(),
+  facts: z.record(z.string(), z.union([z.string(), z.number()])).optional(),
 });
 export type ReadingOutcome = z.infer<typeof readingOutcome>;
 

@@ -55,6 +55,8 @@ export interface KeptPhoto {
   readonly received: 0 | 1;
   /** Why the server did not take it; it stays and is offered again. */
   readonly refusal?: string;
+  /** The server's word for it, which the phone says in its own language. */
+  readonly refusalCode?: string;
 }
 
 /** Somebody is done with a round, and the office does not know yet. */
@@ -94,8 +96,11 @@ export type FieldDatabase = IDBPDatabase<FieldSchema>;
 
 let opened: Promise<FieldDatabase> | null = null;
 
-/** The phone's own store. One connection a page. */
-export function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
+/** What the phone holds, or nothing where its store cannot be read: the self-test says so, and everything else goes on without. */
+export const orNothing = <T, N>(reading: Promise<T>, nothing: N): Promise<T | N> => reading.catch(() => nothing);
+
+/** The phone's own store. One connection a page; rejects where the browser gives none, and tries again the next time. */
+export async function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
   opened ??= openDB<FieldSchema>(name, 3, {
     upgrade(database, before) {
       if (before < 3) database.createObjectStore('closings', { keyPath: 'key' });
@@ -119,6 +124,9 @@ export function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
       (event.target as IDBDatabase).close();
     },
     terminated: () => void (opened = null),
+  }).catch((error: unknown) => {
+    opened = null;
+    throw error;
   });
   return opened;
 }

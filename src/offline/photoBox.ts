@@ -37,7 +37,7 @@ async function sendAll(personId: string): Promise<void> {
     } catch (error) {
       if (!(error instanceof HttpProblem)) throw error;
       if (!isDeclined(error)) return;
-      await (await fieldDatabase()).put('photos', { ...photo, refusal: error.message });
+      await (await fieldDatabase()).put('photos', { ...photo, refusal: error.message, refusalCode: error.status === 413 ? 'fileTooLarge' : error.code });
       continue;
     }
     await (await fieldDatabase()).delete('photos', id);

@@ -1,4 +1,4 @@
-import { fieldDatabase } from './fieldDatabase.ts';
+import { fieldDatabase, orNothing } from './fieldDatabase.ts';
 import { keptRound } from './keptRounds.ts';
 
 /** What a phone must hold before somebody walks out of reach. */
@@ -20,7 +20,7 @@ export function isReady({ hasRound, canWrite, hasProgram, hasSpace }: Readiness)
 
 /** Reads the stored round back, writes and reads a line, and looks for the kept program: a test, not a wish. */
 export async function checkReadiness(owner: { estateId: string; personId: string }, roundId: string, now: Date): Promise<Readiness> {
-  const kept = await keptRound(owner, roundId);
+  const kept = await orNothing(keptRound(owner, roundId), null);
   const hasRound = kept !== null && kept.round.stops.every(({ rowId }) => kept.round.rows.some(({ id }) => id === rowId)) && kept.round.measures.length > 0;
   return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
 }
@@ -53,7 +53,13 @@ async function spaceIsLeft(): Promise<boolean> {
   return quota === undefined || usage === undefined || quota - usage > dayBytes;
 }
 
+const answerMs = 2000;
+let asked: Promise<boolean> | undefined;
+
+/** Asks once. Some browsers ask the person and answer only when they do: the test does not wait for that, and looks again the next time. */
 async function askToPersist(): Promise<boolean | null> {
   if (navigator.storage?.persist === undefined) return null;
-  return (await navigator.storage.persisted()) || (await navigator.storage.persist());
+  if (await navigator.storage.persisted()) return true;
+  asked ??= navigator.storage.persist();
+  return Promise.race([asked, new Promise<boolean>((resolve) => setTimeout(() => resolve(false), answerMs))]);
 }

@@ -1,38 +1,27 @@
 import { defineStore } from 'pinia';
 import { ref, shallowRef } from 'vue';
 import type { PhoneAnswer } from '../../shared/contracts/phones.ts';
-import type { VineState } from '../../shared/contracts/rows.ts';
-import type { FieldMeasure, FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/rounds.ts';
+import type { FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/rounds.ts';
+import type { StopVine } from '../../shared/field/walkState.ts';
 import { http } from '../lib/http.ts';
 import { unlessOffline, unlessRefused } from '../lib/unlessOffline.ts';
 import { sendBags } from '../offline/bagBox.ts';
 import { addClosing, closingsOf, dropClosing, sendClosings } from '../offline/closings.ts';
 import { deviceId } from '../offline/deviceId.ts';
-import type { Entry, KeptPhoto } from '../offline/fieldDatabase.ts';
+import { orNothing, type Entry, type KeptPhoto } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
 import { emptyPhone } from '../offline/emptyPhone.ts';
 import { addEntries, allEntries, entriesOfRound, sendForOthers, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
+import { findingEntry, photoEntry, pickEntry, readingEntry, type Found, type Typed } from '../offline/newEntry.ts';
 import { patienceMs } from '../offline/patience.ts';
 import { addPhoto, refusedPhotos, sendPhotos } from '../offline/photoBox.ts';
 import { pruneReceived } from '../offline/prune.ts';
 import { tellOtherTabs, whenAnotherTabWrites } from '../offline/tabs.ts';
 import { totalWaiting } from '../offline/waiting.ts';
 
-/** Days as the server lists them, the blocks of a day in the order they were sent in. */
-const byDayAndPlace = (a: RoundSummary, b: RoundSummary) => b.onDate.localeCompare(a.onDate) || (a.dayPlace ?? Infinity) - (b.dayPlace ?? Infinity) || 0;
-
 interface Owner {
   estateId: string;
   personId: string;
-}
-
-/** The vine that is read for a stop: the target, or its reserve. */
-export interface VineAtStop {
-  readonly rowId: string;
-  readonly rowLabel: string;
-  readonly ordinal: number;
-  readonly vineNumber: number;
-  readonly isReserve: boolean;
 }
 
 /** The crew's day: what is kept on the phone, what was typed, what was received. Works the same with and without signal. */
@@ -65,7 +54,10 @@ export const useFieldStore = defineStore('field', () => {
 
   async function count(): Promise<void> {
     const { personId } = owner;
-    const [mine, theirs, listed, declined, closings] = await Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), refusedPhotos(personId), closingsOf(personId)]);
+    const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), refusedPhotos(personId), closingsOf(personId)]), null);
+    // A store that cannot be read holds nothing that could be counted; the self-test tells the person.
+    if (held === null) return;
+    const [mine, theirs, listed, declined, closings] = held;
     // All at once: a count that runs ahead of its list would say that nothing waits beside what still does.
     [waiting.value, others.value, all.value, declinedPhotos.value] = [mine, theirs, listed, declined];
     closedHere.value = new Set(closings.map(({ roundId }) => roundId));
@@ -76,14 +68,14 @@ export const useFieldStore = defineStore('field', () => {
   whenAnotherTabWrites(() => void count());
 
   async function show(roundId: string): Promise<void> {
-    const stored = await entriesOfRound(owner.personId, roundId);
+    const stored = await orNothing(entriesOfRound(owner.personId, roundId), []);
     const isStored = new Set(stored.map(({ id }) => id));
     entries.value = [...stored, ...[...writing.values()].filter((entry) => entry.roundId === roundId && !isStored.has(entry.id))];
   }
 
   /** What the phone holds of the day's work: there at once, whatever the network does. */
   async function recallWork(): Promise<void> {
-    const kept = await keptList(owner);
+    const kept = await orNothing(keptList(owner), null);
     if (kept) [rounds.value, listedAt.value] = [kept.items, kept.at];
   }
 
@@ -96,7 +88,7 @@ export const useFieldStore = defineStore('field', () => {
   async function loadWork(): Promise<void> {
     const fresh = await unlessOffline(() => http.get<{ items: RoundSummary[] }>(`/api/estates/${owner.estateId}/rounds`, { withinMs: patienceMs }));
     if (!fresh) return;
-    const mine = fresh.items.filter(({ isMine, state, people }) => isMine && (state === 'sent' || state === 'open') && !people.some(({ id, finishedAt }) => id === owner.personId && finishedAt !== null)).sort(byDayAndPlace);
+    const mine = fresh.items.filter(({ isMine, state, people }) => isMine && (state === 'sent' || state === 'open') && !people.some(({ id, finishedAt }) => id === owner.personId && finishedAt !== null));
     // What there is to do shows at once; each round may be started as soon as it is on the phone.
     [rounds.value, listedAt.value] = [mine, new Date().toISOString()];
     await Promise.all(mine.map(async ({ id }) => {
@@ -104,13 +96,13 @@ export const useFieldStore = defineStore('field', () => {
       if (full !== null && (await isHeld(full)) && full.acknowledgedAt === null) await unlessOffline(() => http.post(`/api/estates/${owner.estateId}/rounds/${id}/acknowledge`));
     }));
     await keepList(owner, mine, new Date()).catch(() => undefined);
-    await dropOtherRounds(owner, mine.map(({ id }) => id));
-    if ((await pruneReceived(new Date())) > 0) await count();
+    await orNothing(dropOtherRounds(owner, mine.map(({ id }) => id)), undefined);
+    if ((await orNothing(pruneReceived(new Date()), 0)) > 0) await count();
   }
 
   /** Opens a round from the phone; from the server only when the phone does not have it. */
   async function openRound(roundId: string): Promise<boolean> {
-    const kept = await keptRound(owner, roundId);
+    const kept = await orNothing(keptRound(owner, roundId), null);
     const found = kept?.round ?? (await fetchRound(roundId));
     if (!found) return false;
     if (!kept) await isHeld(found);
@@ -144,10 +136,6 @@ export const useFieldStore = defineStore('field', () => {
     await count();
   }
 
-  function entryOf(stop: WalkStop, vine: VineAtStop): Pick<Entry, 'id' | 'estateId' | 'personId' | 'roundId' | 'row' | 'vine' | 'at' | 'received' | 'outcome'> {
-    return { id: crypto.randomUUID(), ...owner, roundId: round.value!.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
-  }
-
   /** Shows an entry at once and writes it to the phone; it is safe when this resolves. An entry that cannot be written is shown no longer. */
   async function keep(entry: Entry): Promise<void> {
     writing.set(entry.id, entry);
@@ -162,29 +150,16 @@ export const useFieldStore = defineStore('field', () => {
     if (entry.kind !== 'pick') void send();
   }
 
-  /** Keeps a value on the phone. Sending goes on by itself. `readBy`: a colleague who walks with this phone. */
-  async function record(stop: WalkStop, vine: VineAtStop, typed: { measure: FieldMeasure; text: string; value: number; isOdd: boolean; supersedes: string | null; readBy: string | null }): Promise<void> {
-    const head = entryOf(stop, vine);
-    const flags = [...(typed.isOdd ? (['odd'] as const) : []), ...(vine.isReserve ? (['reserve'] as const) : [])];
-    await keep({
-      ...head, kind: 'reading', finding: null,
-      reading: {
-        id: head.id, blockId: round.value!.blockId, roundId: round.value!.id, targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal, measureCode: typed.measure.code,
-        value: typed.value, unit: typed.measure.unit, valueTyped: typed.text, takenAt: head.at, deviceId: deviceId(), supersedes: typed.supersedes, flags, readBy: typed.readBy, seenAs: { row: vine.rowLabel, vine: vine.vineNumber },
-      },
-    });
-  }
+  const walk = () => ({ ...owner, round: round.value! });
+
+  /** Keeps a value on the phone. Sending goes on by itself. */
+  const record = (stop: WalkStop, vine: StopVine, typed: Typed) => keep(readingEntry(walk(), { stop, vine }, typed));
 
   /** Notes what stands in the target's place: a proposal for the census, and the reserve takes over. */
-  async function find(stop: WalkStop, vine: VineAtStop, { state, readBy }: { state: VineState; readBy: string | null }): Promise<void> {
-    const head = entryOf(stop, vine);
-    await keep({ ...head, kind: 'finding', reading: null, finding: { id: head.id, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, state, roundId: round.value!.id, notedAt: head.at, deviceId: deviceId(), readBy } });
-  }
+  const find = (stop: WalkStop, vine: StopVine, found: Found) => keep(findingEntry(walk(), { stop, vine }, found));
 
   /** Notes that fruit of the vine went into the open bag. */
-  async function pick(stop: WalkStop, vine: VineAtStop): Promise<void> {
-    await keep({ ...entryOf(stop, vine), kind: 'pick', reading: null, finding: null, pick: { targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal } });
-  }
+  const pick = (stop: WalkStop, vine: StopVine) => keep(pickEntry(walk(), { stop, vine }));
 
   /** Takes the last entry back if it is only on this phone; a finding that has left it is set aside. */
   async function undo(entry: Entry): Promise<boolean> {
@@ -196,9 +171,8 @@ export const useFieldStore = defineStore('field', () => {
   }
 
   /** Keeps a photo of the vine with a note on the phone. */
-  async function photograph(stop: WalkStop, vine: VineAtStop, { picture, note }: { picture: Blob; note: string }): Promise<void> {
-    const { id, row, at, estateId, personId, roundId } = entryOf(stop, vine);
-    await addPhoto({ id, estateId, personId, roundId, blockId: round.value!.blockId, rowId: vine.rowId, ordinal: vine.ordinal, row, vine: vine.vineNumber, note, picture, at, received: 0 });
+  async function photograph(stop: WalkStop, vine: StopVine, taken: { picture: Blob; note: string }): Promise<void> {
+    await addPhoto(photoEntry(walk(), { stop, vine }, taken));
     await count();
     void send();
   }

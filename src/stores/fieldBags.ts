@@ -3,9 +3,10 @@ import { shallowRef } from 'vue';
 import type { BagLine, NewBag } from '../../shared/contracts/bags.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
+import { newId } from '../lib/newId.ts';
 import { addBag, bagsOfRound } from '../offline/bagBox.ts';
 import { deviceId } from '../offline/deviceId.ts';
-import type { KeptBag } from '../offline/fieldDatabase.ts';
+import { orNothing, type KeptBag } from '../offline/fieldDatabase.ts';
 
 /** Where a label is bound already, as far as this phone knows. */
 export interface LabelUse {
@@ -23,7 +24,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
   const others = shallowRef<readonly BagLine[]>([]);
 
   async function look(roundId: string): Promise<void> {
-    bags.value = await bagsOfRound(roundId);
+    bags.value = await orNothing(bagsOfRound(roundId), []);
   }
 
   async function load(estateId: string, roundId: string): Promise<void> {
@@ -46,7 +47,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
     const known = usedBy(closed.code);
     if (known && !bags.value.some(({ code }) => code === closed.code)) return known;
     const { zone, ...facts } = closed;
-    const [id, at] = [crypto.randomUUID(), new Date().toISOString()];
+    const [id, at] = [newId(), new Date().toISOString()];
     const bag: NewBag = { ...facts, id, state: 'closed', roundId: owner.roundId, zoneId: null, closedAt: at, deviceTime: null, deviceId: deviceId() };
     const holder = await addBag({ ...owner, id, zone, code: closed.code, bag, at, received: 0, outcome: null });
     await look(owner.roundId);

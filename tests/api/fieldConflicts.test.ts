@@ -3,6 +3,8 @@ import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { loadBlockVines, zonesOfVines } from '../../server/ground/blockVines.ts';
 import { zonedReadings } from '../../server/ground/zonedReadings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { BlockRow } from '../../server/models/BlockRow.ts';
+import { Estate } from '../../server/models/Estate.ts';
 import { Membership } from '../../server/models/Membership.ts';
 import { relabelBlockRows } from '../../server/models/BlockRow.ts';
 import { Reading } from '../../server/models/Reading.ts';
@@ -210,5 +212,55 @@ describe('a phone with a wrong clock', () => {
     expect(stored.flags).toContain('clock');
     expect(stored.deviceTime!.toISOString()).toBe('2019-01-01T10:30:00.000Z');
     expect(stored.takenAt.toISOString()).toBe('2019-01-01T10:00:00.000Z');
+  });
+});
+
+describe('a vine that its row does not have', () => {
+  const row = () => BlockRow.query().findById(made.targets[0]!.rowId).throwIfNotFound();
+  const beyond = async (by: number) => (await row()).pieces[0]!.firstVine + (await row()).vineCount - 1 + by;
+
+  it('is refused by its row and last vine, whoever sends it, while one of the row that is no target is taken', async () => {
+    const { vineCount, label } = await row();
+    const [none, last] = [made.reading(0, { targetId: null, ordinal: await beyond(1) }), made.reading(0, { targetId: null, ordinal: await beyond(0) })];
+    for (const [who, source] of [[ana, 'field'], ['manager', 'paper']] as const) {
+      const { outcomes: [strange] } = await send(who, { readings: [{ ...none, source }] });
+      expect(strange).toMatchObject({ state: 'refused', code: 'noSuchVine', facts: { row: label, last: vineCount } });
+      expect(strange!.reason).toContain(`Row ${label} has vines 1 to ${vineCount}`);
+    }
+    const { findings, outcomes } = await send(ana, { readings: [last], findings: [{ ...made.finding(0), ordinal: await beyond(3) }] });
+    expect(outcomes[0]!.state).toBe('received');
+    expect(findings[0]).toMatchObject({ state: 'refused', code: 'noSuchVine' });
+    expect(await Reading.query().resultSize()).toBe(1);
+    expect(await Vine.query().resultSize()).toBe(0);
+  });
+
+  it('is kept where the round was sent for it: the row was shortened meanwhile', async () => {
+    const { vineCount } = await row();
+    const place = made.targets[0]!.ordinal - (await row()).pieces[0]!.firstVine;
+    await BlockRow.query().findById(made.targets[0]!.rowId).patch({ vineCount: place });
+    try {
+      expect((await send(ana, { readings: [made.reading(0)] })).outcomes[0]!.state).toBe('received');
+      expect((await send(ana, { readings: [made.reading(0, { targetId: null, ordinal: made.targets[0]!.ordinal + 2 })] })).outcomes[0]!.state).toBe('refused');
+    } finally {
+      await BlockRow.query().findById(made.targets[0]!.rowId).patch({ vineCount });
+    }
+  });
+});
+
+describe('midnight', () => {
+  afterAll(() => Estate.query().findById(made.estateId).patch({ timeZone: 'Europe/Paris' }));
+
+  it('is that of the estate: a reading belongs to the season of its own day, and one day has one reading of a vine', async () => {
+    await Estate.query().findById(made.estateId).patch({ timeZone: 'Pacific/Auckland' });
+    await Season.query().insert({ estateId: made.estateId, name: 'Far', startsOn: '2013-07-01', endsOn: '2014-06-30', phases: {} });
+    // 30 June at Greenwich, 1 July at the estate.
+    const first = made.reading(0, { takenAt: '2013-06-30T20:00:00Z', roundId: null, targetId: null });
+    expect((await send('manager', { readings: [first] })).outcomes[0]!.state).toBe('received');
+    const early = made.reading(1, { takenAt: '2013-06-30T11:00:00Z', roundId: null, targetId: null });
+    expect((await send('manager', { readings: [early] })).outcomes[0]).toMatchObject({ state: 'refused', code: 'noSeason' });
+    // The same day at the estate, the next at Greenwich.
+    expect((await send('manager', { readings: [{ ...first, id: randomUUID(), value: 33, takenAt: '2013-07-01T09:00:00Z' }] })).outcomes[0]!.state).toBe('conflict');
+    // The next day at the estate, the same at Greenwich.
+    expect((await send('manager', { readings: [{ ...first, id: randomUUID(), value: 34, takenAt: '2013-07-01T13:00:00Z' }] })).outcomes[0]!.state).toBe('received');
   });
 });

@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import type { NewBag } from '../../../shared/contracts/bags.ts';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { Access } from '../../access/access.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Block } from '../../models/Block.ts';
@@ -55,7 +56,8 @@ export async function holdersOf(trx: Transaction | undefined, estateId: string, 
   return Bag.query(trx).where({ estateId }).whereIn('code', [...new Set(codes)]).whereNull('clashesWith').whereNot({ state: 'void' });
 }
 
-export function seasonOn(seasons: readonly Season[], isoTime: string): Season | null {
-  const day = new Date(isoTime).toISOString().slice(0, 10);
+/** The season that a moment belongs to, by the estate's own day. */
+export function seasonOn(seasons: readonly Season[], isoTime: string, timeZone: string): Season | null {
+  const day = dayIn(timeZone, new Date(isoTime));
   return seasons.find(({ startsOn, endsOn }) => startsOn <= day && day <= endsOn) ?? null;
 }

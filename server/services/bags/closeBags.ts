@@ -66,7 +66,7 @@ function refusalOf(bag: NewBag, context: BagContext): Answer | null {
   if (bag.roundId !== null && !context.rounds.has(bag.roundId)) return refused(bag.id, { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' });
   if (bag.roundId === null && context.ownRoundsOnly) return refused(bag.id, { code: 'needsRound', reason: 'Crew close bags within a round that was sent to them.' });
   if (bag.vines.some(({ rowId }) => context.rows.get(rowId)?.blockId !== bag.blockId)) return refused(bag.id, { code: 'rowElsewhere', reason: 'A row of this bag is not a row of the block.' });
-  if (seasonOn(context.seasons, bag.closedAt) === null) return refused(bag.id, { code: 'noSeason', reason: `No season of this estate holds ${bag.closedAt.slice(0, 10)}. Check the clock, or make the season first.` });
+  if (seasonOn(context.seasons, bag.closedAt, context.estateTimeZone) === null) return refused(bag.id, { code: 'noSeason', reason: `No season of this estate holds ${bag.closedAt.slice(0, 10)}. Check the clock, or make the season first.` });
   return null;
 }
 
@@ -83,7 +83,7 @@ async function store(trx: Transaction, access: Access, { bag, context }: { bag: 
   });
   context.known.set(id, row);
   if (isTaken) return { outcome: clashOutcome(id, holder.id), fresh: true };
-  if (holder) await takeLabelOver(trx, access, { bag: row, from: holder, seasonId: seasonOn(context.seasons, bag.closedAt)!.id });
+  if (holder) await takeLabelOver(trx, access, { bag: row, from: holder, seasonId: seasonOn(context.seasons, bag.closedAt, context.estateTimeZone)!.id });
   if (state !== 'void') context.byCode.set(code, row);
   return { outcome: received(id), fresh: true };
 }

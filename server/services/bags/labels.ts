@@ -2,6 +2,7 @@ import type { Transaction } from 'objection';
 import type { Access } from '../../access/access.ts';
 import { Unusable } from '../../errors.ts';
 import { Bag } from '../../models/Bag.ts';
+import { Estate } from '../../models/Estate.ts';
 import { Reading } from '../../models/Reading.ts';
 import { Season } from '../../models/Season.ts';
 import { seasonOn } from './bagContext.ts';
@@ -37,8 +38,9 @@ export async function moveLabResults(trx: Transaction, estateId: string, moves: 
 /** Tells the season that a bag belongs to by its day. A label that nobody has sent yet goes to the newest season until then. */
 export async function seasonFinder(trx: Transaction, estateId: string): Promise<(bag: Bag) => string> {
   const seasons = await Season.query(trx).where({ estateId }).orderBy('startsOn', 'desc');
+  const { timeZone } = await Estate.query(trx).findById(estateId).select('timeZone').throwIfNotFound();
   return (bag) => {
-    const season = seasonOn(seasons, (bag.closedAt ?? bag.createdAt).toISOString()) ?? seasons[0];
+    const season = seasonOn(seasons, (bag.closedAt ?? bag.createdAt).toISOString(), timeZone) ?? seasons[0];
     if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make one first; figures belong to a season.');
     return season.id;
   };

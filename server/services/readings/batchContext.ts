@@ -1,8 +1,10 @@
 import type { Transaction } from 'objection';
 import type { NewReading, VineFinding } from '../../../shared/contracts/readings.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { Access } from '../../access/access.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Block } from '../../models/Block.ts';
+import { Estate } from '../../models/Estate.ts';
 import { BlockRow } from '../../models/BlockRow.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Membership } from '../../models/Membership.ts';
@@ -10,11 +12,16 @@ import { Reading } from '../../models/Reading.ts';
 import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Season } from '../../models/Season.ts';
+import { Target } from '../../models/Target.ts';
+import { plannedKey } from './strangeVine.ts';
 
 /** Everything of the estate that a batch refers to, loaded in sets. */
 export interface BatchContext {
   blocks: Set<string>;
   rows: Map<string, BlockRow>;
+  vineOneEnd: Map<string, 'start' | 'end'>;
+  /** Vines that the rounds of the batch were sent for, targets and reserves. */
+  planned: Set<string>;
   rounds: Set<string>;
   bags: Set<string>;
   measures: Map<string, MeasureRecord>;
@@ -35,9 +42,11 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
   const rounds = Round.query(trx).where({ estateId }).whereIn('id', [...roundIds]).select('id');
   if (batch.ownRoundsOnly) rounds.whereIn('id', RoundPerson.query(trx).where({ estateId, personId: access.personId }).select('roundId'));
   // One connection serves a transaction, so these run one after the other; each is one statement for the whole batch.
-  const blocks = await Block.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.blockId)).select('id');
+  const blocks = await Block.query(trx).where({ estateId }).whereIn('id', [...ids((reading) => reading.blockId), ...new Set(findings.map(({ blockId }) => blockId))]).select('id', 'vineOneEnd');
   const rows = await BlockRow.query(trx).where({ estateId }).whereIn('id', rowIds);
   const roundRows = await rounds;
+  const targets = await Target.query(trx).where({ estateId }).whereIn('planId', Round.query(trx).where({ estateId }).whereIn('id', roundRows.map(({ id }) => id)).select('planId')).select('rowId', 'ordinal', 'reserveRowId', 'reserveOrdinal');
+  const { timeZone } = await Estate.query(trx).findById(estateId).select('timeZone').throwIfNotFound();
   const bags = await Bag.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.bagId)).select('id');
   const measures = await MeasureRecord.query(trx).where({ estateId });
   const known = await Reading.query(trx)
@@ -51,6 +60,8 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
   return {
     blocks: new Set(blocks.map((block) => block.id)),
     rows: new Map(rows.map((row) => [row.id, row])),
+    vineOneEnd: new Map(blocks.map((block) => [block.id, block.vineOneEnd])),
+    planned: new Set(targets.flatMap(({ rowId, ordinal, reserveRowId, reserveOrdinal }) => [plannedKey(rowId, ordinal), ...(reserveRowId === null || reserveOrdinal === null ? [] : [plannedKey(reserveRowId, reserveOrdinal)])])),
     rounds: new Set(roundRows.map((round) => round.id)),
     bags: new Set(bags.map((bag) => bag.id)),
     measures: new Map(measures.map((measure) => [measure.code, measure])),
@@ -59,7 +70,7 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
     ownRoundsOnly: batch.ownRoundsOnly,
     now: batch.now,
     seasonOn: (isoTime) => {
-      const day = new Date(isoTime).toISOString().slice(0, 10);
+      const day = dayIn(timeZone, new Date(isoTime));
       return seasons.find((season) => season.startsOn <= day && day <= season.endsOn)?.id ?? null;
     },
   };

@@ -30,9 +30,9 @@ async function findTwice(trx: Transaction, access: Access, fresh: readonly NewRe
   const ids = fresh.map(({ id }) => id);
   const { rows } = (await trx.raw(
     `select a.id as fresh_id, 'sameVine' as kind, array_agg(b.id order by b.received_at, b.id) as others
-     from readings a join readings b
+     from readings a join estates e on e.id = a.estate_id join readings b
        on b.estate_id = a.estate_id and b.row_id = a.row_id and b.ordinal = a.ordinal and b.measure_code = a.measure_code
-      and b.round_id is not distinct from a.round_id and b.id <> a.id and (a.round_id is not null or b.taken_at::date = a.taken_at::date) and ${stillCounts}
+      and b.round_id is not distinct from a.round_id and b.id <> a.id and (a.round_id is not null or (b.taken_at at time zone e.time_zone)::date = (a.taken_at at time zone e.time_zone)::date) and ${stillCounts}
      where a.estate_id = :estateId and a.id = any(:ids) and ${notCorrected} group by a.id
      union all
      select a.id, 'sameTarget', array_agg(b.id order by b.received_at, b.id)

@@ -1,4 +1,5 @@
 import type { NewReading, Refusal } from '../../../shared/contracts/readings.ts';
+import { strangeVine } from './strangeVine.ts';
 import type { BatchContext } from './batchContext.ts';
 
 export const clockToleranceMs = 5 * 60_000;
@@ -12,6 +13,8 @@ export function refusalOf(reading: NewReading, context: BatchContext, before: re
   if (reading.rowId !== null) {
     const row = context.rows.get(reading.rowId);
     if (!row || row.blockId !== reading.blockId) return { code: 'rowElsewhere', reason: 'This row is not a row of the block.' };
+    const strange = reading.ordinal === null ? null : strangeVine(row, reading.ordinal, context);
+    if (strange !== null) return strange;
   }
   if (reading.roundId !== null && !context.rounds.has(reading.roundId)) return { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' };
   if (context.ownRoundsOnly && reading.roundId === null) return { code: 'needsRound', reason: 'Crew record within a round that was sent to them.' };

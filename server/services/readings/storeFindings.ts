@@ -5,6 +5,7 @@ import type { Access } from '../../access/access.ts';
 import { writeVines } from '../../models/Vine.ts';
 import { VineFindingRecord } from '../../models/VineFindingRecord.ts';
 import type { BatchContext } from './batchContext.ts';
+import { strangeVine } from './strangeVine.ts';
 
 /** Stores findings once each and marks the census with the fresh ones, as proposals where the role may only propose. */
 export async function storeFindings(trx: Transaction, access: Access, findings: readonly VineFinding[], context: BatchContext): Promise<ReadingOutcome[]> {
@@ -25,10 +26,12 @@ export async function storeFindings(trx: Transaction, access: Access, findings: 
 }
 
 function refusalOf(finding: VineFinding, context: BatchContext): Refusal | null {
-  if (context.rows.get(finding.rowId)?.blockId !== finding.blockId) return { code: 'rowElsewhere', reason: 'This row is not a row of the block.' };
+  const row = context.rows.get(finding.rowId);
+  if (row?.blockId !== finding.blockId) return { code: 'rowElsewhere', reason: 'This row is not a row of the block.' };
   if (finding.roundId !== null && !context.rounds.has(finding.roundId)) return { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' };
   if (context.ownRoundsOnly && finding.roundId === null) return { code: 'needsRound', reason: 'Crew record within a round that was sent to them.' };
-  return finding.readBy !== null && !context.readers.has(finding.readBy) ? { code: 'readerUnknown', reason: 'Who found this is not somebody of this estate whose findings you may type.' } : null;
+  if (finding.readBy !== null && !context.readers.has(finding.readBy)) return { code: 'readerUnknown', reason: 'Who found this is not somebody of this estate whose findings you may type.' };
+  return strangeVine(row, finding.ordinal, context);
 }
 
 /** A proposed mark goes when the person who made it reads the same vine afterwards: the mark was a slip of the thumb. */

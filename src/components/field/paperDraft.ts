@@ -3,6 +3,7 @@ import type { VineState } from '../../../shared/contracts/rows.ts';
 import type { FieldRound, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { isOdd } from '../../../shared/field/valueEntry.ts';
 import { askedAt } from '../../../shared/field/walkState.ts';
+import { newId } from '../../lib/newId.ts';
 import { readNumber } from '../../lib/readNumber.ts';
 
 /** One box of a sheet as it is typed; its id stays, so that saving twice stores once. */
@@ -25,15 +26,15 @@ export type PaperDraft = Record<string, PaperLine>;
 
 export function emptyDraft(round: FieldRound): PaperDraft {
   return Object.fromEntries(round.stops.map((stop) => [stop.targetId, {
-    cells: Object.fromEntries(askedAt(round, stop).map(({ code }) => [code, { id: crypto.randomUUID(), text: '', outcome: null, supersedes: null }])),
-    states: ['', ''], findingIds: [crypto.randomUUID(), crypto.randomUUID()],
+    cells: Object.fromEntries(askedAt(round, stop).map(({ code }) => [code, { id: newId(), text: '', outcome: null, supersedes: null }])),
+    states: ['', ''], findingIds: [newId(), newId()],
   }]));
 }
 
 /** The cell after typing: what was saved already is corrected under an id of its own. */
 export function retyped(cell: PaperCell, text: string): PaperCell {
   const isSaved = cell.outcome !== null && cell.outcome.state !== 'refused' && cell.outcome.reason === null;
-  return isSaved && text !== cell.text ? { id: crypto.randomUUID(), text, outcome: null, supersedes: cell.id } : { ...cell, text };
+  return isSaved && text !== cell.text ? { id: newId(), text, outcome: null, supersedes: cell.id } : { ...cell, text };
 }
 
 /**

@@ -49,10 +49,3 @@ export function useWalkPlace(round: Ref<FieldRound | null>, entries: () => reado
   });
   return { openIndex, stop, vine, previous, measure, done, read, standing };
 }
-
-/** Whether an entry belongs to a stop: by its target, or by the vine that was found to be something else. */
-export function isAtStop(entry: Entry, { targetId, rowId, ordinal, reserve }: WalkStop): boolean {
-  const own = entry.reading ?? entry.pick;
-  if (own) return targetId === own.targetId;
-  return [{ rowId, ordinal }, reserve].some((one) => one?.rowId === entry.finding?.rowId && one?.ordinal === entry.finding?.ordinal);
-}

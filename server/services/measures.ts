@@ -23,9 +23,10 @@ export async function addMeasure(access: Access, input: NewMeasure): Promise<Mea
 export async function changeMeasure(access: Access, measureId: string, change: MeasureChange): Promise<MeasureView> {
   return MeasureRecord.transaction(async (trx) => {
     const before = await MeasureRecord.query(trx).findOne({ estateId: access.estateId, id: measureId }).forUpdate().throwIfNotFound();
+    const viewBefore = viewOf(before);
     const after = await before.$query(trx).patchAndFetch(change);
     const changed = Object.keys(change) as (keyof MeasureChange)[];
-    await writeAudit(trx, access, { action: 'measures.change', subjectType: 'measure', subjectId: measureId, subjectName: before.name || before.code, before: Object.fromEntries(changed.map((key) => [key, viewOf(before)[key]])), after: change });
+    await writeAudit(trx, access, { action: 'measures.change', subjectType: 'measure', subjectId: measureId, subjectName: viewBefore.name || viewBefore.code, before: Object.fromEntries(changed.map((key) => [key, viewBefore[key]])), after: change });
     return viewOf(after);
   });
 }

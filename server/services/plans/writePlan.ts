@@ -36,22 +36,23 @@ export async function makePlan(access: Access, zoningId: string, { name, seed = 
 
 /** Changes a draft. Its vines are drawn anew with the same seed: zones whose count stays keep their vines. */
 export async function changePlan(access: Access, planId: string, change: PlanChange): Promise<PlanView> {
-  const before = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
-  const composed = change.choices ? await composePlan(access.estateId, before.zoningId, { choices: change.choices, seed: before.seed }) : null;
+  const known = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
+  const composed = change.choices ? await composePlan(access.estateId, known.zoningId, { choices: change.choices, seed: known.seed }) : null;
   await Plan.transaction(async (trx) => {
     const plan = await lockedRow(trx, access, planId);
     if (plan.state !== 'draft') throw new Clash('locked', `"${plan.name}" is locked, so that its vines stay as drawn. Make a new plan, or draw again with a reason.`);
+    const before = { name: plan.name, choices: plan.options };
     await plan.$query(trx).patch({ ...(change.name ? { name: change.name } : {}), ...(composed && change.choices ? { options: change.choices, isPilot: change.choices.isPilot, result: recordOf(composed), engineVersion: planEngine } : {}) });
     if (composed) await writeDraw(trx, planId, access.estateId, composed);
-    await writeAudit(trx, access, { action: 'plans.change', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before: { name: plan.name, choices: plan.options }, after: change });
+    await writeAudit(trx, access, { action: 'plans.change', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before, after: change });
   });
   return viewPlan(access, planId, composed?.planGround.ground);
 }
 
 /** Draws other vines with another seed. The earlier draw stays on record with the reason. */
 export async function redrawPlan(access: Access, planId: string, { reason, seed = newSeed() }: z.infer<typeof planRedraw>, now: Date): Promise<PlanView> {
-  const before = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
-  const composed = await composePlan(access.estateId, before.zoningId, { choices: planChoices.parse(before.options), seed });
+  const known = await Plan.query().findOne({ estateId: access.estateId, id: planId }).throwIfNotFound();
+  const composed = await composePlan(access.estateId, known.zoningId, { choices: planChoices.parse(known.options), seed });
   await Plan.transaction(async (trx) => {
     const plan = await lockedRow(trx, access, planId);
     if (plan.state === 'closed') throw new Clash('closed', `"${plan.name}" is closed. Make a new plan.`);
@@ -59,9 +60,10 @@ export async function redrawPlan(access: Access, planId: string, { reason, seed 
     if (walking > 0) throw new Clash('roundsOut', `${walking} round${walking === 1 ? ' walks' : 's walk'} these vines. Close or call off the rounds before drawing again.`);
     const old = await Target.query(trx).where({ estateId: access.estateId, planId }).orderBy('walkOrder').select('id', 'rowId', 'ordinal', 'drawOrder', 'reserveRowId', 'reserveOrdinal', 'zoneId');
     const draws = [...(plan.draws as unknown[]), { at: now.toISOString(), by: access.personId, reason, seed: plan.seed, targets: old }];
+    const before = { seed: plan.seed };
     await plan.$query(trx).patch({ seed, draws, result: recordOf(composed), engineVersion: planEngine });
     await writeDraw(trx, planId, access.estateId, composed);
-    await writeAudit(trx, access, { action: 'plans.redraw', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before: { seed: plan.seed }, after: { seed }, reason });
+    await writeAudit(trx, access, { action: 'plans.redraw', subjectType: 'plan', subjectId: planId, subjectName: plan.name, before, after: { seed }, reason });
   });
   return viewPlan(access, planId, composed.planGround.ground);
 }

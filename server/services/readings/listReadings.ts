@@ -61,7 +61,8 @@ function viewOf(row: Reading, labels: BlockRow[], person: string | null): Readin
 export async function excludeReading(access: Access, readingId: string, reason: string | null): Promise<void> {
   await Reading.transaction(async (trx) => {
     const reading = await Reading.query(trx).findOne({ estateId: access.estateId, id: readingId }).forUpdate().throwIfNotFound();
+    const before = { excludedReason: reading.excludedReason };
     await reading.$query(trx).patch({ excludedReason: reason, excludedBy: reason === null ? null : access.personId });
-    await writeAudit(trx, access, { action: reason === null ? 'readings.include' : 'readings.exclude', subjectType: 'reading', subjectId: readingId, before: { excludedReason: reading.excludedReason }, reason });
+    await writeAudit(trx, access, { action: reason === null ? 'readings.include' : 'readings.exclude', subjectType: 'reading', subjectId: readingId, before, reason });
   });
 }

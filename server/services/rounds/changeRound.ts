@@ -40,8 +40,9 @@ export async function changeRound(access: Access, roundId: string, change: z.inf
     if (round.state === 'called off') throw new Clash('calledOff', 'This round was called off. Ask who sent it.');
     if (change.state === 'closed' && !change.whole && member && (await isLeftToOthers(trx, access, member, now))) return;
     if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
+    const before = { state: round.state };
     await round.$query(trx).patch({ state: change.state, closedAt: change.state === 'closed' ? now : null });
-    await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before: { state: round.state }, after: change });
+    await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before, after: change });
   });
 }
 

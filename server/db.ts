@@ -23,6 +23,7 @@ import * as m019 from '../migrations/019_pick_intervals.ts';
 import * as m020 from '../migrations/020_vine_history.ts';
 import * as m021 from '../migrations/021_day_order.ts';
 import * as m022 from '../migrations/022_missing_vines.ts';
+import * as m023 from '../migrations/023_lot_alcohol_methods.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -48,6 +49,7 @@ const migrations: Record<string, Knex.Migration> = {
   '020_vine_history': m020,
   '021_day_order': m021,
   '022_missing_vines': m022,
+  '023_lot_alcohol_methods': m023,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

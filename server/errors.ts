@@ -101,6 +101,7 @@ const table = [
 ];
 
 const exclusionViolation = '23P01';
+const deadlock = '40P01';
 /** Text with the character NUL, in a column of text or of JSON: PostgreSQL keeps neither. */
 const unstorableText = new Set(['22021', '22P05']);
 
@@ -111,6 +112,7 @@ export function problemOf(error: unknown): Problem {
   }
   if (isImportProblem(error)) return { status: 422, title: 'File refused', code: error.code, detail: error.message };
   if (nativeCode(error) === exclusionViolation) return { status: 409, title: 'Clash', code: 'vineTwice', detail: 'Some of these vines are in another lot already. Take them out there first.' };
+  if (nativeCode(error) === deadlock) return { status: 409, title: 'Clash', code: 'atOnce', detail: 'Somebody changed the same thing at the same moment. Nothing of yours was changed; look again and repeat the step.' };
   if (unstorableText.has(nativeCode(error) ?? '')) return { status: 422, title: 'Cannot be used', code: 'badInput', detail: 'The text holds a character that cannot be kept (NUL). Type it anew instead of pasting it.' };
   const status = httpStatus(error);
   if (status !== null) return { status, title: 'Bad request', code: 'badRequest', detail: status === 413 ? 'This request is too large.' : 'This request could not be read. Check its form and try again.' };

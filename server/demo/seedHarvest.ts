@@ -45,7 +45,7 @@ async function earlierLots(made: DemoEstate, days: DemoDays): Promise<void> {
   for (const { yearsAgo, name, wineType, offset, kg, mustL, wineL } of earlier) {
     const day = offset - 365 * yearsAgo;
     const scenario = await Scenario.query().findOne({ estateId: made.estateId, seasonId: made.seasons[yearsAgo]!.id, isLive: true }).throwIfNotFound();
-    const { id } = await createLot(winemaker, { name, wineType, scenarioId: scenario.id, pickOn: days.day(day), tankId: null, crew: '' }, days.day(day));
+    const { id } = await createLot(winemaker, { name, wineType, scenarioId: scenario.id, pickOn: days.day(day), tankId: null, crew: '', alcoholMethod: null }, days.day(day));
     await enterTicket(manager, { lotId: id, ticketNo: `${days.day(day).slice(2, 4)}-${kg}`, gross: kg + 3120, tare: 3120, unit: 'kg', weighedAt: days.at(day, 10).toISOString(), split: [], corrects: null, note: '' }, days.at(day, 11));
     await enterCellarResult(winemaker, id, { mustL, wineL, tankBrix: null, leftOutKg: null, note: '' }, days.at(day + 40, 10));
   }

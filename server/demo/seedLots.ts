@@ -36,7 +36,7 @@ export async function seedLots(made: DemoEstate, days: DemoDays): Promise<void> 
   for (const { name, wineType, pick, tank, parts } of lots) {
     const wanted = parts.flatMap(([block, number]) => zones.filter((zone) => zone.blockName === block && zone.number === number).map((zone) => ({ zoneId: zone.id, rowIds: null })));
     if (wanted.length === 0) continue;
-    const { id } = await createLot(access, { name, wineType, scenarioId: null, pickOn: null, tankId: null, crew: '' }, days.day(0));
+    const { id } = await createLot(access, { name, wineType, scenarioId: null, pickOn: null, tankId: null, crew: '', alcoholMethod: null }, days.day(0));
     const version = async () => (await Lot.query().findById(id).throwIfNotFound()).version;
     await setLotParts(access, id, { parts: wanted }, await version());
     await changeLot(access, id, { pickOn: days.day(name === moved ? pick + 3 : pick), tankId: tanks.find((candidate) => candidate.name === tank)?.id ?? null }, await version());

@@ -1,3 +1,4 @@
+import type { BrixMethod } from '../../shared/contracts/lots.ts';
 import { EstateModel } from './BaseModel.ts';
 
 export class Lot extends EstateModel {
@@ -15,6 +16,8 @@ export class Lot extends EstateModel {
   declare factors: unknown;
   /** Who picks, in words. */
   declare crew: string;
+  /** Its own way to potential alcohol; null for the estate's. */
+  declare alcoholMethod: BrixMethod | null;
   declare version: number;
   declare confirmedBy: string | null;
   declare confirmedAt: Date | null;

@@ -1,5 +1,6 @@
 import { Router, type Request } from 'express';
 import { z } from 'zod';
+import { isoDate } from '../../shared/contracts/common.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
 import { factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
 import { newTicket, ticketFile } from '../../shared/contracts/tickets.ts';
@@ -13,6 +14,7 @@ import { seasonReview } from '../services/lots/review.ts';
 import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
 import { versionMatched } from './etag.ts';
 
+const knownQuery = z.object({ known: isoDate.optional() });
 const letterQuery = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
 
 const today = (request: Request) => todayOf(accessOf(request), new Date());
@@ -21,7 +23,7 @@ const today = (request: Request) => todayOf(accessOf(request), new Date());
 export function noticeStateRoutes(): Router {
   const router = Router();
   router.get('/notice-state/:code', async (request, response) => {
-    response.set('cache-control', 'no-store').json(await noticeState(idParam(request, 'code')));
+    response.set('cache-control', 'no-store').json(await noticeState(idParam(request, 'code'), new Date()));
   });
   return router;
 }
@@ -31,7 +33,8 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   const router = Router({ mergeParams: true });
 
   router.get('/notices', allow('notices.acknowledge'), async (request, response) => {
-    const items = await listNotices(accessOf(request));
+    const { known } = knownQuery.parse(request.query);
+    const items = await listNotices(accessOf(request), { today: await today(request), knownOn: known ?? null });
     response.json({ items, total: items.length });
   });
   router.get('/notice-people', allow('notices.send'), async (request, response) => {

@@ -17,6 +17,7 @@ import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
 const boardQuery = z.object({ scenario: id.optional(), known: isoDate.optional() });
+const knownQuery = boardQuery.pick({ known: true });
 const resultsQuery = z.object({ season: id.optional() });
 const ripeningQuery = z.object({ season: id.optional(), known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
 
@@ -80,7 +81,7 @@ export function lotRoutes(): Router {
     response.json({ items, total: items.length });
   });
   router.get('/day-capacities', allow('lots.see', 'read'), async (request, response) => {
-    const items = await listCapacities(accessOf(request));
+    const items = await listCapacities(accessOf(request), knownQuery.parse(request.query).known ?? null);
     response.json({ items, total: items.length });
   });
   router.put('/day-capacities', allow('lots.build', 'propose'), async (request, response) => {

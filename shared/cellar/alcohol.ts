@@ -1,10 +1,12 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
 import { solidsGPerL } from './must.ts';
+import { sugarOfBrix } from './mustSugar.ts';
 
 /**
  * Potential alcohol, % by volume: what would form if all sugar fermented. Always a range with its method; never the
  * alcohol of a label. 16.83 g/L of sugar for 1 % is the convention of the EU; yeasts tested need 16.5 to 17.2 and the
- * rule of thumb is 18; theory, with nothing lost, is 15.43.
+ * rule of thumb is 18; theory, with nothing lost, is 15.43. From °Brix sugar comes by the OIV's table of must, or as all
+ * solids less an allowance.
  */
 export interface AlcoholSettings {
   /** % per °Brix. */
@@ -28,7 +30,7 @@ export interface SugarRange {
   readonly upper: number;
 }
 
-export type AlcoholMethodId = 'brixFactor' | 'solidsLessAllowance' | 'measuredSugar';
+export type AlcoholMethodId = 'brixFactor' | 'sugarTable' | 'solidsLessAllowance' | 'measuredSugar';
 
 export interface PotentialAlcohol {
   readonly method: AlcoholMethodId;
@@ -48,6 +50,7 @@ const OPPOSITE = { low: 'high', middle: 'middle', high: 'low' } as const;
 
 export const alcoholMethods = [
   { id: 'measuredSugar', from: 'sugarGPerL', percent: (sugar, settings, which) => sugar / settings.sugarPerPercent[OPPOSITE[which]] },
+  { id: 'sugarTable', from: 'brix', percent: (brix, settings, which) => sugarOfBrix(brix) / settings.sugarPerPercent[OPPOSITE[which]] },
   { id: 'solidsLessAllowance', from: 'brix', percent: (brix, settings, which) => Math.max(0, solidsGPerL(brix) - settings.otherSolidsGPerL) / settings.sugarPerPercent[OPPOSITE[which]] },
   { id: 'brixFactor', from: 'brix', percent: (brix, settings, which) => brix * settings.perBrix[which] },
 ] as const satisfies readonly AlcoholMethod[];

@@ -6,6 +6,13 @@
 const firstBrix = 10;
 const sugarGPerL = [82.2, 92.8, 103.5, 114.3, 125.2, 136.1, 147.1, 158.2, 169.4, 180.6, 191.9, 203.3, 214.7, 226.2, 237.8, 249.5, 261.2, 273.0, 284.9, 296.9, 308.9];
 
+/** Sugar in g/L of a must by its °Brix; beyond the table its first and last steps go on. `sugarOfBrix(24)` is 237.8. */
+export function sugarOfBrix(brix: number): number {
+  const at = Math.min(sugarGPerL.length - 2, Math.max(0, Math.floor(brix - firstBrix)));
+  const [low, high] = [sugarGPerL[at]!, sugarGPerL[at + 1]!];
+  return Math.max(0, low + (brix - firstBrix - at) * (high - low));
+}
+
 /** °Brix of a must with so much sugar; NaN outside the table. `brixOfSugar(237.8)` is 24. */
 export function brixOfSugar(gPerL: number): number {
   const above = sugarGPerL.findIndex((sugar) => sugar >= gPerL);

@@ -7,7 +7,7 @@ export const wineType = z.enum(wineTypes);
 export type WineType = z.infer<typeof wineType>;
 
 /** Ways to potential alcohol that need no more than °Brix. */
-export const brixMethods = ['brixFactor', 'solidsLessAllowance'] as const;
+export const brixMethods = ['brixFactor', 'sugarTable', 'solidsLessAllowance'] as const;
 export type BrixMethod = (typeof brixMethods)[number];
 export const alcoholChoice = z.object({ method: z.enum(brixMethods) });
 
@@ -93,6 +93,8 @@ export const lotView = z.object({
   tankId: id.nullable(),
   version: z.number().int(),
   crew: z.string(),
+  /** Its own way to potential alcohol; null for the estate's. */
+  alcoholMethod: z.enum(brixMethods).nullable(),
   lines: z.array(lotLine),
   stops: z.array(pickStop),
   summary: lotSummary,
@@ -123,8 +125,8 @@ export const lotsBoard = z.object({
 });
 export type LotsBoard = z.infer<typeof lotsBoard>;
 
-export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null), crew: z.string().trim().max(200).default('') });
-export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable(), crew: z.string().trim().max(200) }).partial();
+export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null), crew: z.string().trim().max(200).default(''), alcoholMethod: z.enum(brixMethods).nullable().default(null) });
+export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable(), crew: z.string().trim().max(200), alcoholMethod: z.enum(brixMethods).nullable() }).partial();
 
 /** The whole new content of a lot: zones of any block, each whole or by rows. */
 export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200) });

@@ -27,6 +27,8 @@ export const noticeView = z.object({
   /** Set once a newer notice of the lot is out: this one no longer holds. */
   voidAt: z.string().nullable(),
   replacedBy: z.number().int().nullable(),
+  /** Nothing replaced it, and its day has gone by at the estate. */
+  isOver: z.boolean(),
   body: noticeBody,
   differences: z.array(noticeDifference),
   sentBy: z.string(),
@@ -45,5 +47,5 @@ export const newNotice = z.object({
 export type NewNotice = z.infer<typeof newNotice>;
 
 /** What the code on paper says to anybody who holds it. */
-export const noticeState = z.object({ number: z.number().int(), estateName: z.string(), isVoid: z.boolean(), replacedBy: z.number().int().nullable(), pickOn: isoDate.nullable() });
+export const noticeState = z.object({ number: z.number().int(), estateName: z.string(), isVoid: z.boolean(), isOver: z.boolean(), replacedBy: z.number().int().nullable(), pickOn: isoDate.nullable() });
 export type NoticeState = z.infer<typeof noticeState>;

@@ -79,6 +79,8 @@ const reviewedLot = z.object({
   lotName: z.string(),
   forecast: figure.nullable(),
   /** Day of the forecast: that of the first notice, or null when it is the estimate of today. */
+  /** The pick notice, what was known when the first load came in, or the estimate of today. */
+  forecastFrom: z.enum(['notice', 'known', 'today']),
   forecastOn: z.string().nullable(),
   actualT: z.number().nullable(),
   tickets: z.number().int(),

@@ -6,6 +6,7 @@ import type { CellarResultView, FactorView, factorSwitch, newCellarResult } from
 import type { NoticeState, NoticeView, newNotice } from '../../shared/contracts/notices.ts';
 import type { newTicket, ReviewView, ticketFile, TicketReading, TicketView } from '../../shared/contracts/tickets.ts';
 import { http } from '../lib/http.ts';
+import { inOrder } from '../lib/inOrder.ts';
 
 interface Listed<Item> {
   items: Item[];
@@ -25,10 +26,13 @@ export const useHarvestStore = defineStore('harvest', () => {
   const review = shallowRef<ReviewView | null>(null);
   const results = shallowRef<readonly CellarResultView[]>([]);
   const factors = shallowRef<readonly FactorView[]>([]);
+  const newestNotices = inOrder();
   const at = (estateId: string, path: string) => `/api/estates/${estateId}/${path}`;
 
-  async function loadNotices(estateId: string): Promise<void> {
-    notices.value = (await http.get<Listed<NoticeView>>(at(estateId, 'notices'))).items;
+  /** `knownOn`: as they stood on that day; empty for now. */
+  async function loadNotices(estateId: string, knownOn = ''): Promise<void> {
+    const query = { known: knownOn === '' ? null : knownOn };
+    await newestNotices(() => http.get<Listed<NoticeView>>(at(estateId, 'notices'), { query }), ({ items }) => (notices.value = items));
   }
 
   async function loadPeople(estateId: string): Promise<void> {

@@ -20,7 +20,7 @@ export const useLotsStore = defineStore('lots', () => {
   const capacities = shallowRef<readonly CapacityView[]>([]);
   const decisions = shallowRef<readonly DecisionView[]>([]);
   let estate = '';
-  const [newestBoard, newestDecisions] = [inOrder(), inOrder()];
+  const [newestBoard, newestDecisions, newestCapacities] = [inOrder(), inOrder(), inOrder()];
   const base = () => `/api/estates/${estate}`;
 
   /** `knownOn`: as all of it stood on that day; empty for now. */
@@ -95,8 +95,9 @@ export const useLotsStore = defineStore('lots', () => {
     compared.value = await Promise.all(scenarioIds.map((scenario) => http.get<LotsBoard>(`${base()}/lots`, { query: { scenario } })));
   }
 
-  async function loadCapacities(estateId: string): Promise<void> {
-    capacities.value = (await http.get<{ items: CapacityView[] }>(`/api/estates/${estateId}/day-capacities`)).items;
+  async function loadCapacities(estateId: string, knownOn = ''): Promise<void> {
+    const query = { known: knownOn === '' ? null : knownOn };
+    await newestCapacities(() => http.get<{ items: CapacityView[] }>(`/api/estates/${estateId}/day-capacities`, { query }), ({ items }) => (capacities.value = items));
   }
 
   async function setCapacity(estateId: string, capacity: z.input<typeof dayCapacity>): Promise<void> {

@@ -192,7 +192,7 @@ describe('a notice on paper', () => {
     const { code } = await PickNotice.query().findById(first.id).throwIfNotFound();
     const anybody = await app.browser();
     const state = async () => (await anybody.get(`/api/notice-state/${code}`)).body as NoticeState;
-    expect(await state()).toEqual({ number: first.number, estateName: 'Ripening test', isVoid: false, replacedBy: null, pickOn: lot.pickOn });
+    expect(await state()).toEqual({ number: first.number, estateName: 'Ripening test', isVoid: false, isOver: true, replacedBy: null, pickOn: lot.pickOn });
     await send();
     const third = (await send()).body as { number: number };
     expect(await state()).toMatchObject({ isVoid: true, replacedBy: third.number, pickOn: null });

@@ -104,6 +104,14 @@ describe('potential alcohol', () => {
     expect(potentialAlcohol(sugar(24), 'solidsLessAllowance').middle).toBeCloseTo(13.89, 2); // R 4.2.2
   });
 
+  it('takes sugar from the OIV table of must when only °Brix is known', () => {
+    // Table II of OIV-MA-AS2-02: 20 % by mass as sucrose is 191.9 g/L, 24 % is 237.8 g/L; halves of a step by hand.
+    expect(potentialAlcohol(sugar(24), 'sugarTable').middle).toBeCloseTo(237.8 / 16.83, 9);
+    expect(potentialAlcohol(sugar(24.5), 'sugarTable').high).toBeCloseTo((237.8 + 249.5) / 2 / 16.5, 9);
+    expect(potentialAlcohol(sugar(20), 'sugarTable').low).toBeCloseTo(191.9 / 18, 9);
+    for (const brix of [9, 10, 17.3, 30, 31]) expect(potentialAlcohol(sugar(brix), 'sugarTable').middle).toBeGreaterThan(potentialAlcohol(sugar(brix - 0.1), 'sugarTable').middle);
+  });
+
   it("carries the sugar's own interval", () => {
     const wide = potentialAlcohol({ lower: 23, value: 24, upper: 25 }, 'brixFactor');
     expectRelative(wide.low, 23 * 0.55, 1e-12);

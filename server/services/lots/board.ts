@@ -19,7 +19,7 @@ import { boardConfidence, figureOf } from './zoneOutlook.ts';
  * season. With `knownOn` as all of it stood and was known at the end of that day.
  */
 export async function lotsBoard(access: Access, options: { scenarioId: string | null; today: string; knownOn?: string | null }): Promise<LotsBoard> {
-  const scenario = await findScenario(access, options);
+  const scenario = await findScenario(access, { ...options, today: options.knownOn ?? options.today });
   const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
   const then = options.knownOn ? await thenOf(access.estateId, scenario.id, await endOfEstateDay(access.estateId, options.knownOn)) : null;
   const tanks = then?.stood.tanks ?? (await listTanks(access));
@@ -129,6 +129,7 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): Omit<Lo
     tankId: lot.tankId,
     version: lot.version,
     crew: lot.crew,
+    alcoholMethod: lot.alcoholMethod ?? null,
     lines: shares.map(({ block, zone, outlook, vines, bearing, share, rowIds }, at) => ({
       without: withoutZone(shares, at),
       rowIds,
@@ -144,7 +145,7 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): Omit<Lo
       areaHa: (share * zone.areaM2) / 10_000,
       tonnes: figureOf(scaled(outlook.tonnes, share), { n: null, kind: 'estimated' }),
     })),
-    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null, factors: ground.factors, alcoholMethod: ground.alcoholMethod }),
+    summary: summariseLot(shares, { wineType: lot.wineType, tank: tanks.find((tank) => tank.id === lot.tankId) ?? null, factors: ground.factors, alcoholMethod: lot.alcoholMethod ?? ground.alcoholMethod }),
   };
 }
 

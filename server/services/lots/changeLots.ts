@@ -10,6 +10,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
+import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
@@ -27,13 +28,14 @@ export async function createLot(access: Access, input: z.infer<typeof newLot>, t
   });
 }
 
-/** Changes name, wine, date or tank of a lot that is still at the version the change was made on. */
+/** Changes name, wine, date, tank or way to potential alcohol of a lot that is still at the version the change was made on. */
 export async function changeLot(access: Access, lotId: string, change: z.infer<typeof lotChange>, version: number): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
     if (change.pickOn) await requireNoPickStop(trx, access, { lotId, pickOn: change.pickOn });
+    const { name, pickOn, tankId, crew, wineType, alcoholMethod } = lot;
     await lot.$query(trx).patch({ ...change, version: lot.version + 1 });
-    await writeAudit(trx, access, { action: 'lots.change', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { name: lot.name, pickOn: lot.pickOn, tankId: lot.tankId }, after: change });
+    await writeAudit(trx, access, { action: 'lots.change', subjectType: 'lot', subjectId: lotId, subjectName: name, before: { name, pickOn, tankId, crew, wineType, alcoholMethod }, after: change });
   });
 }
 
@@ -134,12 +136,16 @@ export async function createTank(access: Access, input: z.infer<typeof newTank>)
 export async function changeTank(access: Access, tankId: string, change: z.infer<typeof tankChange> & { retiredAt?: Date }): Promise<void> {
   await Tank.transaction(async (trx) => {
     const tank = await Tank.query(trx).findOne({ estateId: access.estateId, id: tankId }).throwIfNotFound();
+    const { name, litres, workingFill, minimumFill } = tank;
     await tank.$query(trx).patch(change);
-    await writeAudit(trx, access, { action: change.retiredAt ? 'tanks.retire' : 'tanks.change', subjectType: 'tank', subjectId: tankId, subjectName: tank.name, after: change });
+    await writeAudit(trx, access, { action: change.retiredAt ? 'tanks.retire' : 'tanks.change', subjectType: 'tank', subjectId: tankId, subjectName: name, before: { name, litres, workingFill, minimumFill }, after: change });
   });
 }
 
+/** Takes a lot for a change. One change of a scenario's lots at a time: people who move the same vines at once wait for each other. */
 export async function lockLot(trx: Transaction, access: Access, lotId: string, version: number): Promise<Lot> {
+  const { scenarioId } = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).throwIfNotFound();
+  await Scenario.query(trx).findById(scenarioId).forNoKeyUpdate();
   const lot = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).forUpdate().throwIfNotFound();
   if (lot.version !== version) throw new Stale('lotChanged', `Somebody changed the lot "${lot.name}" since you read it. Load it again and repeat the step.`, { current: lot.version });
   return lot;

@@ -38,7 +38,7 @@ export function withoutTonnesDifferences(differences: readonly NoticeDifference[
 /** The notice as plain text in the reader's language: what it replaces and what changed come first. */
 export function noticeText(body: NoticeBody, how: { language: string; replacesNumber: number | null; differences: readonly NoticeDifference[] }): string {
   const texts = textsIn(how.language);
-  const date = (day: string) => new Intl.DateTimeFormat(how.language === 'en' ? 'en-GB' : how.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+  const date = (day: string) => dateWords(how.language, day);
   const tonnes = (value: number) => new Intl.NumberFormat(how.language, { minimumFractionDigits: 1, maximumFractionDigits: 1 }).format(value);
   const shown = (what: string, value: string) => (what === 'pickOn' ? date(value) : what === 'tonnes' && value !== nothing ? `${tonnes(Number(value))} t` : value);
   const lines = [
@@ -60,10 +60,15 @@ function wordOf(texts: Texts, what: NoticeDifference['what']): string {
   return words[what];
 }
 
+/** A day as people say it, such as "Friday 12 September". */
+export function dateWords(language: string, day: string): string {
+  return new Intl.DateTimeFormat(language === 'en' ? 'en-GB' : language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+}
+
 /** Words around a notice on paper. */
-export function sheetWords(language: string): { title: string; scan: string; void: string; voidAlone: string } {
-  const { title, scan, void: replaced, voidAlone } = textsIn(language);
-  return { title, scan, void: replaced, voidAlone };
+export function sheetWords(language: string): { title: string; scan: string; void: string; voidAlone: string; over: string } {
+  const { title, scan, void: replaced, voidAlone, over } = textsIn(language);
+  return { title, scan, void: replaced, voidAlone, over };
 }
 
 /** Sentence of a notice that was taken back without another in its place. */

@@ -7,7 +7,8 @@ import type { Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { noticeSheet } from '../../exporters/noticeSheet.ts';
 import { queueMail } from '../../mail/outbox.ts';
-import { estateDay } from '../../ground/estateDay.ts';
+import { endOfEstateDay, estateDay } from '../../ground/estateDay.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Lot } from '../../models/Lot.ts';
@@ -17,9 +18,10 @@ import { Person } from '../../models/Person.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { lotsBoard } from './board.ts';
+import { lockLot } from './changeLots.ts';
 import { keepDecision, shownOf } from './decisions.ts';
 import { requireNoPickStop } from './pickStops.ts';
-import { differencesBetween, fill, noticeText, sheetWords, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
+import { dateWords, differencesBetween, fill, noticeText, sheetWords, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
 
 interface Recipient {
   person: Person;
@@ -38,7 +40,9 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
   const recipients = await recipientsOf(estateId, input.people);
   return PickNotice.transaction(async (trx) => {
     // Numbers run without a gap or a double: one notice at a time in an estate.
-    const estate = await Estate.query(trx).findById(estateId).forUpdate().throwIfNotFound();
+    const estate = await Estate.query(trx).findById(estateId).forNoKeyUpdate().throwIfNotFound();
+    // As it was read above: a lot that somebody opened or dated anew meanwhile is not announced.
+    await lockLot(trx, access, lotId, lot.version);
     await requireNoPickStop(trx, access, { lotId, pickOn: body.pickOn });
     const before = await PickNotice.query(trx).where({ estateId, lotId }).orderBy('number', 'desc').first();
     const newest = await PickNotice.query(trx).where({ estateId }).max('number as number').first();
@@ -108,11 +112,16 @@ async function mailNotice(trx: Transaction, { access, estateName, notice, body, 
   }
 }
 
-/** Notices, newest first. Who may not see lots gets those addressed to them, without tonnes and tank. */
-export async function listNotices(access: Access): Promise<NoticeView[]> {
+/**
+ * Notices, newest first; with `knownOn` as they stood at the end of that day. Who may not see lots gets those addressed
+ * to them, without tonnes and tank.
+ */
+export async function listNotices(access: Access, { today, knownOn }: { today: string; knownOn: string | null }): Promise<NoticeView[]> {
   const { estateId, personId } = access;
   const seesLots = may(access.roles, 'lots.see', 'read');
-  const all = await PickNotice.query().where({ estateId }).orderBy('number', 'desc');
+  const until = knownOn === null ? null : await endOfEstateDay(estateId, knownOn);
+  const by = (at: Date | null) => (at !== null && (until === null || at <= until) ? at : null);
+  const all = (await PickNotice.query().where({ estateId }).orderBy('number', 'desc')).filter(({ sentAt }) => by(sentAt) !== null);
   const readers = await NoticeReader.query().whereIn('noticeId', all.map((notice) => notice.id));
   const people = await Person.query().findByIds([...new Set([...readers.map((reader) => reader.personId), ...all.map((notice) => notice.sentBy)])]).select('id', 'name');
   const nameOf = (id: string) => people.find((person) => person.id === id)?.name ?? '';
@@ -123,10 +132,11 @@ export async function listNotices(access: Access): Promise<NoticeView[]> {
       const body = notice.body as NoticeBody;
       const before = all.find((other) => other.number === notice.replacesNumber);
       const differences = before ? differencesBetween(before.body as NoticeBody, body) : [];
+      const voidAt = by(notice.voidAt);
       return {
-        id: notice.id, number: notice.number, lotId: notice.lotId, replacesNumber: notice.replacesNumber, voidAt: notice.voidAt?.toISOString() ?? null, replacedBy: all.find((other) => other.replacesNumber === notice.number)?.number ?? null,
+        id: notice.id, number: notice.number, lotId: notice.lotId, replacesNumber: notice.replacesNumber, voidAt: voidAt?.toISOString() ?? null, isOver: voidAt === null && body.pickOn < (knownOn ?? today), replacedBy: all.find((other) => other.replacesNumber === notice.number)?.number ?? null,
         body: seesLots ? body : withoutTonnes(body), differences: seesLots ? differences : withoutTonnesDifferences(differences), sentBy: nameOf(notice.sentBy), sentAt: notice.sentAt.toISOString(),
-        readers: own(notice).map((reader) => ({ personId: reader.personId, name: nameOf(reader.personId), readAt: reader.readAt?.toISOString() ?? null })), mine: own(notice).some((reader) => reader.personId === personId),
+        readers: own(notice).map((reader) => ({ personId: reader.personId, name: nameOf(reader.personId), readAt: by(reader.readAt)?.toISOString() ?? null })), mine: own(notice).some((reader) => reader.personId === personId),
       };
     });
 }
@@ -147,16 +157,26 @@ export async function printNotice(access: Access, noticeId: string, options: { p
   const title = fill(texts.title, { number: notice.number });
   return {
     name: `${title}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'),
-    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: notice.voidAt === null ? null : replacedBy === null ? texts.voidAlone : fill(texts.void, { number: replacedBy }), now: options.now }),
+    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: stateWords(notice, { replacedBy, texts, language: person.language, day: dayIn(estate.timeZone, options.now) }), now: options.now }),
   };
 }
 
+/** Words across a paper whose number no longer holds, or whose day is over; null while it holds. */
+function stateWords({ voidAt, body }: PickNotice, how: { replacedBy: number | null; texts: ReturnType<typeof sheetWords>; language: string; day: string }): string | null {
+  const { replacedBy, texts, language, day } = how;
+  const { pickOn } = body as NoticeBody;
+  if (voidAt === null) return pickOn < day ? fill(texts.over, { date: dateWords(language, pickOn) }) : null;
+  return replacedBy === null ? texts.voidAlone : fill(texts.void, { number: replacedBy });
+}
+
 /** What the code on a printed notice leads to, for anybody who holds the paper: whether its number still holds, and nothing else. */
-export async function noticeState(code: string): Promise<NoticeState> {
+export async function noticeState(code: string, now: Date): Promise<NoticeState> {
   const notice = await PickNotice.query().findOne({ code });
   if (!notice) throw new Missing('No pick notice has this code. Ask whoever gave you the paper.');
   const estate = await Estate.query().findById(notice.estateId).throwIfNotFound();
-  return { number: notice.number, estateName: estate.name, isVoid: notice.voidAt !== null, replacedBy: await replacementOf(notice), pickOn: notice.voidAt === null ? (notice.body as NoticeBody).pickOn : null };
+  const { pickOn } = notice.body as NoticeBody;
+  const isVoid = notice.voidAt !== null;
+  return { number: notice.number, estateName: estate.name, isVoid, isOver: !isVoid && pickOn < dayIn(estate.timeZone, now), replacedBy: await replacementOf(notice), pickOn: isVoid ? null : pickOn };
 }
 
 /** Number of the notice in force for the same lot, followed through all replacements; null while this one holds. */

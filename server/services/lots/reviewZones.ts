@@ -1,10 +1,11 @@
-import { scaled } from '../../../shared/cellar/dependent.ts';
+import { scaled, type Dependent } from '../../../shared/cellar/dependent.ts';
 import { errorParts, type ErrorPart, type ErrorShare } from '../../../shared/cellar/errorParts.ts';
+import { lotTonnes } from '../../../shared/cellar/lots.ts';
 import type { ReviewView, TicketSplit } from '../../../shared/contracts/tickets.ts';
-import { isBearing } from '../../ground/blockVines.ts';
+import { isBearing, type BlockVines } from '../../ground/blockVines.ts';
 import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
-import { figureOf, zoneOutlooks, type ZoneOutlook } from './zoneOutlook.ts';
+import { figureOf, zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
 type ReviewedZone = ReviewView['zones'][number];
 const shownDates = 4;
@@ -21,14 +22,13 @@ interface Weighed {
  * Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. What reached
  * the books after the block's first load was weighed is no forecast. `dayOf`: the estate's day of an instant.
  */
-export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[], dayOf: (at: Date) => string): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
+export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[], { dayOf, knownOn }: { dayOf: (at: Date) => string; knownOn: KnownOn }): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
   const all = ground.blocks.flatMap((block) => {
-    const first = firstWeighed(ground, tickets, block);
-    const dates = forecastDates(block, first && dayOf(first));
+    const dates = forecastDates(ground, tickets, { block, dayOf });
     return block.zones.flatMap((zone, at) => {
       const weighed = weighedOf(ground, tickets, { block, at });
       if (weighed === null) return [];
-      return dates.map((forecastOn) => ({ block, at, weighed, forecastOn, isLast: forecastOn === dates.at(-1), outlook: outlooksOn(ground, block, forecastOn)[at]!, number: zone.number }));
+      return dates.map((forecastOn) => ({ block, at, weighed, forecastOn, isLast: forecastOn === dates.at(-1), outlook: outlooksOn(ground, block, { day: forecastOn, knownOn })[at]!, number: zone.number }));
     });
   });
   const zones = all.map(({ block, number, weighed, forecastOn, outlook }): ReviewedZone => {
@@ -47,14 +47,32 @@ function firstWeighed({ lots }: BoardGround, tickets: readonly ScaleTicket[], bl
 }
 
 /** Days on which clusters were counted or weighed and received, up to the day of the first load: each gave a forecast of its own. */
-function forecastDates({ readings }: BoardBlock, until: string | null): string[] {
+export function forecastDates(ground: BoardGround, tickets: readonly ScaleTicket[], { block, dayOf }: { block: BoardBlock; dayOf: (at: Date) => string }): string[] {
+  const { readings } = block;
+  const first = firstWeighed(ground, tickets, block);
+  const until = first && dayOf(first);
   const days = new Set(readings.filter(({ measureCode, excludedReason, receivedOn }) => yieldMeasures.includes(measureCode) && excludedReason === null && (until === null || receivedOn <= until)).map(({ receivedOn }) => receivedOn));
   return [...days].sort().slice(-shownDates);
 }
 
-function outlooksOn(ground: BoardGround, block: BoardBlock, day: string): ZoneOutlook[] {
+/** The vine census and the factors in use at the end of a day: a forecast is judged by what could be known of it. */
+export type KnownOn = (block: BoardBlock, day: string) => { census: BlockVines; factors: UsedFactors };
+
+function outlooksOn(ground: BoardGround, block: BoardBlock, { day, knownOn }: { day: string; knownOn: KnownOn }): ZoneOutlook[] {
   const readings = block.readings.filter(({ receivedOn }) => receivedOn <= day);
-  return zoneOutlooks({ ground: block.ground, zoneOf: block.zoneOf, zoneNumbers: block.zones.map(({ number }) => number), readings, measures: ground.measures, season: ground.season, factors: ground.factors });
+  const { census, factors } = knownOn(block, day);
+  return zoneOutlooks({ ground: census, zoneOf: block.zoneOf, zoneNumbers: block.zones.map(({ number }) => number), readings, measures: ground.measures, season: ground.season, factors });
+}
+
+/** Tonnes of a lot by what was known at the end of a day; null for a lot without vines. */
+export function lotForecast(ground: BoardGround, lot: number, how: { day: string; knownOn: KnownOn }): Dependent | null {
+  const parts = ground.blocks.flatMap((block) => {
+    const shares = block.zones.map((_, at) => shareIn(block, at, lot));
+    if (shares.every((share) => share === 0)) return [];
+    const outlooks = outlooksOn(ground, block, how);
+    return shares.flatMap((share, at) => (share === 0 ? [] : [{ tonnes: scaled(outlooks[at]!.tonnes, share) }]));
+  });
+  return parts.length === 0 ? null : lotTonnes(parts);
 }
 
 /** Kilograms of a zone over all lots: by the splits of tickets, else by expected tonnes within the lot. */
@@ -94,11 +112,21 @@ function shareIn(block: BoardBlock, at: number, lot: number): number {
   return bearing === 0 ? 0 : bearing / block.outlooks[at]!.bearing;
 }
 
-/** Factors that were measured again after a forecast, as found over as forecast. */
+/**
+ * Factors that were found anew after a forecast, as found over as forecast. Clusters weighed at lag phase and again when
+ * ripe tell how much they grew; the growth factor takes that part, and the weight of lag phase stands.
+ */
 function ratiosOf(then: ZoneOutlook, now: ZoneOutlook): Partial<Record<ErrorPart, number>> {
   const part = (outlook: ZoneOutlook, name: string) => outlook.parts.find((one) => one.part === name)!;
+  const ratio = (name: string) => part(now, name).value / part(then, name).value;
+  const isNew = (name: string) => part(now, name).kind === 'measured' && ratio(name) !== 1;
   const ratios: Partial<Record<ErrorPart, number>> = {};
-  for (const name of ['clusters', 'clusterWeight'] as const) if (part(now, name).kind === 'measured' && part(now, name).value !== part(then, name).value) ratios[name] = part(now, name).value / part(then, name).value;
+  if (now.bearing > 0 && then.bearing > 0 && now.bearing !== then.bearing) ratios.vines = now.bearing / then.bearing;
+  if (isNew('clusters')) ratios.clusters = ratio('clusters');
+  const isRipe = then.beforeVeraison && !now.beforeVeraison;
+  if (isRipe) ratios.growth = ratio('clusterWeight') / part(then, 'growth').value;
+  else if (isNew('clusterWeight')) ratios.clusterWeight = ratio('clusterWeight');
+  if (!isRipe && ratio('growth') !== 1) ratios.growth = ratio('growth');
   if (part(now, 'losses').value !== part(then, 'losses').value) ratios.losses = (1 - part(now, 'losses').value) / (1 - part(then, 'losses').value);
   return ratios;
 }

@@ -1,3 +1,4 @@
+import type { Transaction } from 'objection';
 import type { z } from 'zod';
 import { readTickets } from '../../../shared/cellar/ticketTable.ts';
 import { kgPerUnit, type MassUnit, type NewTicket, type ticketFile, type TicketReading, type TicketSplit, type TicketView } from '../../../shared/contracts/tickets.ts';
@@ -22,6 +23,7 @@ const splitToleranceKg = 1;
 export async function enterTicket(access: Access, input: NewTicket, now: Date): Promise<{ id: string }> {
   const { estateId } = access;
   return ScaleTicket.transaction(async (trx) => {
+    await oneAtATime(trx, estateId);
     const lot = await Lot.query(trx).findOne({ estateId, id: input.lotId }).forUpdate().throwIfNotFound();
     const scenario = await Scenario.query(trx).findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
     if (!scenario.isLive) throw new Unusable('whatIf', 'A ticket belongs to a lot in force, not to a what-if.');
@@ -43,13 +45,21 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
 
 /** Reads a weighbridge's table back; enters all of it when asked to and nothing is left to settle. */
 export async function importTickets(access: Access, file: z.infer<typeof ticketFile>, options: { today: string; now: Date }): Promise<TicketReading> {
+  return ScaleTicket.transaction((trx) => importIn(trx, access, file, options));
+}
+
+/** Ticket numbers are known once in an estate: whoever enters tickets waits for whoever is doing so. */
+async function oneAtATime(trx: Transaction, estateId: string): Promise<void> {
+  await Estate.query(trx).findById(estateId).forNoKeyUpdate();
+}
+
+async function importIn(trx: Transaction, access: Access, file: z.infer<typeof ticketFile>, options: { today: string; now: Date }): Promise<TicketReading> {
   const { estateId } = access;
+  if (file.apply) await oneAtATime(trx, estateId);
   const scenario = await findScenario(access, { scenarioId: null, today: options.today });
-  const [lots, known, estate] = await Promise.all([
-    Lot.query().where({ estateId, scenarioId: scenario.id }).select('id', 'name'),
-    ScaleTicket.query().where({ estateId }).select('ticketNo'),
-    Estate.query().findById(estateId).throwIfNotFound(),
-  ]);
+  const lots = await Lot.query(trx).where({ estateId, scenarioId: scenario.id }).select('id', 'name');
+  const known = await ScaleTicket.query(trx).where({ estateId }).select('ticketNo');
+  const estate = await Estate.query(trx).findById(estateId).throwIfNotFound();
   const read = readTickets(file.text, { lots: lots.map(({ id, name }) => ({ id, name })), known: known.map(({ ticketNo }) => ticketNo) }, file);
   const view: TicketReading = {
     tickets: read.tickets.map(({ line, ticketNo, lotName, gross, tare, unit, day, netOnly }) => ({ line, ticketNo, lotName, netKg: (gross - tare) * kgPerUnit[unit], day, netOnly })),
@@ -58,16 +68,14 @@ export async function importTickets(access: Access, file: z.infer<typeof ticketF
   if (!file.apply) return view;
   if (read.questions.length > 0) throw new Clash('tableQuestions', 'Answer what is asked about the table first; nothing was kept.');
   if (read.problems.length > 0 || read.tickets.length === 0) throw new Unusable('tableProblems', `${read.problems.length} lines of the table cannot be used; nothing was kept. Correct them and read it again.`);
-  await ScaleTicket.transaction(async (trx) => {
-    const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time, netOnly }) => ({
-      estateId, lotId, ticketNo, grossKg: gross * kgPerUnit[unit], tareKg: tare * kgPerUnit[unit], unitTyped: unit, split: [], corrects: null, enteredBy: access.personId, enteredAt: options.now,
-      note: netOnly ? 'net weight only' : '',
-      weighedAt: ScaleTicket.raw('(?::timestamp at time zone ?)', [`${day} ${time}`, estate.timeZone]),
-    }));
-    await ScaleTicket.query(trx).insert(rows as never);
-    await Lot.query(trx).where({ estateId }).whereIn('id', read.tickets.map(({ lotId }) => lotId)).whereNot({ state: 'picked' }).patch({ state: 'picked', version: Lot.raw('version + 1') as never });
-    await writeAudit(trx, access, { action: 'tickets.import', subjectType: 'ticket', subjectId: scenario.id, subjectName: `${read.tickets.length}`, after: { numbers: read.tickets.map(({ ticketNo }) => ticketNo) } });
-  });
+  const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time, netOnly }) => ({
+    estateId, lotId, ticketNo, grossKg: gross * kgPerUnit[unit], tareKg: tare * kgPerUnit[unit], unitTyped: unit, split: [], corrects: null, enteredBy: access.personId, enteredAt: options.now,
+    note: netOnly ? 'net weight only' : '',
+    weighedAt: ScaleTicket.raw('(?::timestamp at time zone ?)', [`${day} ${time}`, estate.timeZone]),
+  }));
+  await ScaleTicket.query(trx).insert(rows as never);
+  await Lot.query(trx).where({ estateId }).whereIn('id', read.tickets.map(({ lotId }) => lotId)).whereNot({ state: 'picked' }).patch({ state: 'picked', version: Lot.raw('version + 1') as never });
+  await writeAudit(trx, access, { action: 'tickets.import', subjectType: 'ticket', subjectId: scenario.id, subjectName: `${read.tickets.length}`, after: { numbers: read.tickets.map(({ ticketNo }) => ticketNo) } });
   return { ...view, kept: read.tickets.length };
 }
 

@@ -40,9 +40,9 @@ export async function roundLines(access: Access, { day }: Moment): Promise<Today
   });
 }
 
-/** Pick notices addressed to the person that they have not read, void ones left out. */
-export async function noticeLines({ estateId, personId }: Access): Promise<TodayOf<'notice'>[]> {
-  const notices = await PickNotice.query().where({ estateId }).whereNull('voidAt').whereIn('id', NoticeReader.query().where({ personId }).whereNull('readAt').select('noticeId')).orderBy('number');
+/** Pick notices addressed to the person that they have not read; void ones and those whose day is over are left out. */
+export async function noticeLines({ estateId, personId }: Access, { day }: Moment): Promise<TodayOf<'notice'>[]> {
+  const notices = await PickNotice.query().where({ estateId }).whereNull('voidAt').whereRaw("body ->> 'pickOn' >= ?", [day]).whereIn('id', NoticeReader.query().where({ personId }).whereNull('readAt').select('noticeId')).orderBy('number');
   return notices.map(({ id, number, body }) => {
     const { lotName, pickOn } = body as NoticeBody;
     return { kind: 'notice', id, number, lotName, pickOn };

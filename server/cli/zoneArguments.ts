@@ -31,7 +31,8 @@ export interface ZoneArguments {
   readonly zones: 'advise' | number;
   readonly layerWeights: 'advise' | 'equal';
   readonly cellSizeM: number;
-  readonly smallestPatchHa: number;
+  /** Null takes what suits the block. */
+  readonly smallestPatchHa: number | null;
   readonly smoothingM: number;
   readonly standardise: 'plain' | 'robust';
   readonly principalComponents: boolean;
@@ -64,7 +65,7 @@ const argumentOptions = {
   zones: { type: 'string', default: 'advise' },
   'layer-weights': { type: 'string', default: 'advise' },
   cell: { type: 'string', default: '2' },
-  'min-patch-ha': { type: 'string', default: '0.05' },
+  'min-patch-ha': { type: 'string' },
   smooth: { type: 'string', default: '3' },
   standardise: { type: 'string', default: 'plain' },
   components: { type: 'boolean', default: false },
@@ -87,7 +88,7 @@ export function readArguments(args: readonly string[]): ZoneArguments {
     zones: values.zones === 'advise' ? 'advise' : wholeNumber('--zones', values.zones, { least: 1, most: 6, or: 'advise or ' }),
     layerWeights: oneOf('--layer-weights', values['layer-weights'], ['advise', 'equal']),
     cellSizeM: numberIn('--cell', values.cell, { least: 0.25, most: 100 }),
-    smallestPatchHa: numberIn('--min-patch-ha', values['min-patch-ha'], { least: 0, most: 100 }),
+    smallestPatchHa: values['min-patch-ha'] === undefined ? null : numberIn('--min-patch-ha', values['min-patch-ha'], { least: 0, most: 100 }),
     smoothingM: numberIn('--smooth', values.smooth, { least: 0, most: 50 }),
     standardise: oneOf('--standardise', values.standardise, ['plain', 'robust']),
     principalComponents: values.components,

@@ -51,7 +51,7 @@ async function zoneFiles(asked: ZoneArguments, beside: SecondThread | null, stop
   const { layers, readings, secondsHere, secondsBeside } = await readInputs(block, asked, beside);
   stopwatch.split(secondsHere, 'waiting for files');
   const { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed } = asked;
-  const options = { zones, standardise, smoothingM, smallestPatchHa, principalComponents, seed };
+  const options = { zones, standardise, smoothingM, principalComponents, seed, ...(smallestPatchHa === null ? {} : { smallestPatchHa }) };
   const input = { grid: block.grid, layers: layers.map(({ layer }) => layer), options, readings };
   const { result, seconds: secondsWeighing } = await zoneInTwo(input, beside, (stage) => stopwatch.lap(stage));
   const chosen = result.candidates[result.chosenK - 1]!;

@@ -11,7 +11,8 @@ import { assignToCentres, fitKMeans } from './kmeans.ts';
 import { selectPoints, type PointTable } from './kmeansPoints.ts';
 import { randomIndex, type Random } from './random.ts';
 
-/** Hennig's own reading of the mean Jaccard (from memory): a zone below the first is not to be trusted, one from the second on is stable. */
+/** Hennig's own reading of the mean Jaccard (from memory): a zone below the first has dissolved, one below the second is not to be trusted, one from the third on is stable. */
+export const DISSOLVED_BELOW = 0.5;
 export const TRUSTED_FROM = 0.6;
 export const STABLE_FROM = 0.75;
 

@@ -4,11 +4,11 @@ import { isSteadier, STABLE_FROM, type Steadiness } from './clusterHold.ts';
 
 export interface NumberNote {
   /**
-   * Doubtful: the advised number's weakest zone. Of another number, unsteady: it stands out more, yet a zone of it cannot be
-   * trusted. Holds: it is nearly as good and its weakest zone comes back better. Agrees: it is found again much more surely
+   * Doubtful: the advised number's weakest zone. Of another number, unsteady: it stands out more, yet its weakest zone is
+   * doubtful. Middle: it stands out more, but the advised one lies in the middle of what chance does not tell apart. Holds: it is nearly as good and its weakest zone comes back better. Agrees: it is found again much more surely
    * from half of the cells. Close: it is nearly as good.
    */
-  readonly code: 'doubtful' | 'unsteady' | 'holds' | 'agrees' | 'close';
+  readonly code: 'doubtful' | 'unsteady' | 'middle' | 'holds' | 'agrees' | 'close';
   readonly k: number;
   /** The share the note is about, 0…1, and that of the advised number. */
   readonly share: number;
@@ -31,7 +31,7 @@ export function numberNotes(advised: number | null, alsoOffer: readonly number[]
   const others = evidence.filter(({ k }) => alsoOffer.includes(k)).map((row): NumberNote => {
     const [holds, stability] = [row.holds ?? 1, row.stability ?? 1];
     const byHold = { k: row.k, share: holds, ownShare: ownHolds };
-    if ((row.score ?? 0) > (own.score ?? 0)) return { code: 'unsteady', ...byHold };
+    if ((row.score ?? 0) > (own.score ?? 0)) return { code: holds < STABLE_FROM ? 'unsteady' : 'middle', ...byHold };
     if (holds - ownHolds >= BETTER) return { code: 'holds', ...byHold };
     return isSteadier(row, own) ? { code: 'agrees', k: row.k, share: stability, ownShare: ownStability } : { code: 'close', ...byHold };
   });

@@ -25,7 +25,7 @@ import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
 import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '3';
+export const ENGINE_VERSION = '4';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;

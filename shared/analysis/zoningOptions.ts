@@ -1,7 +1,9 @@
 /** What a person may choose of a zoning, its defaults, and the check of both options and input. */
 
+import { polygonsArea } from '../geo/rings.ts';
 import { AnalysisError } from './analysisError.ts';
 import { assertCellCount } from './grid.ts';
+import { MOST_PATCH_HA, smallestPatchFor } from './smallestPatch.ts';
 import { MOST_ZONES } from './verdictGap.ts';
 import type { ZoningInput, ZoningOptions } from './zoningTypes.ts';
 
@@ -9,7 +11,7 @@ export const defaultZoningOptions: ZoningOptions = {
   zones: 'advise',
   standardise: 'plain',
   smoothingM: 3,
-  smallestPatchHa: 0.05,
+  smallestPatchHa: MOST_PATCH_HA,
   narrowestM: 0,
   borders: 'free',
   principalComponents: false,
@@ -19,7 +21,7 @@ export const defaultZoningOptions: ZoningOptions = {
 
 /** Defaults filled in and every option checked; layers and readings are checked against the grid. */
 export function checkedOptions({ grid, layers, options = {}, readings = [], together = [], planting }: ZoningInput): ZoningOptions {
-  const all = { ...defaultZoningOptions, ...options };
+  const all = { ...defaultZoningOptions, smallestPatchHa: smallestPatchFor(polygonsArea(grid.outlineXY)), ...options };
   if (all.zones !== 'advise' && !(Number.isInteger(all.zones) && all.zones >= 1 && all.zones <= MOST_ZONES)) {
     throw new AnalysisError('zones', `${all.zones} zones cannot be made; ask for advise or a whole number from 1 to ${MOST_ZONES}.`);
   }

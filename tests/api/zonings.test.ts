@@ -2,6 +2,7 @@ import { readFileSync, readdirSync, readlinkSync } from 'node:fs';
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
+import { smallestPatchFor } from '../../shared/analysis/smallestPatch.ts';
 import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
@@ -47,7 +48,7 @@ afterAll(async () => {
 });
 
 const base = () => `/api/estates/${estate.estateId}`;
-const recipe = (over: object = {}) => ({ layers: [{ layerId: plot.layerId }], ...over });
+const recipe = (over: object = {}) => ({ layers: [{ layerId: plot.layerId }], smallestPatchHa: 0.05, ...over });
 const view = async (zoningId: string, zones?: number): Promise<ZoningView> => (await manager.get(`${base()}/zonings/${zoningId}${zones ? `?zones=${zones}` : ''}`)).body as ZoningView;
 const labelsOf = async (zoningId: string, zones: number) => (await manager.get(`${base()}/zonings/${zoningId}/labels?zones=${zones}`)).body as Buffer;
 
@@ -282,6 +283,12 @@ describe('a zoning that does not come to its end', () => {
 });
 
 describe('a draft', () => {
+  it('has a smallest patch that suits the block where nobody said one', async () => {
+    const { options } = await view(await zoned({ smallestPatchHa: undefined }));
+    expect(options.smallestPatchHa).toBe(smallestPatchFor(plot.ground.block.areaM2));
+    expect([2_000, 20_000, 33_000, 200_000].map(smallestPatchFor)).toEqual([0.01, 0.02, 0.03, 0.05]);
+  });
+
   it('fills the block: areas add up to within 0.1 %, no gap, no overlap', async () => {
     const zoningId = await draft(4);
     const seen = await view(zoningId);

@@ -23,13 +23,13 @@ export interface ZonesRow {
 
 /** Two sizes and two widths of passage between zones; 2 to 5 true zones. */
 export function* benchZones(perKind: number, firstSeed: number): Generator<ZonesRow> {
-  for (const [areaHa, cellSizeM, smallestPatchHa] of [[2, 2, 0.02], [20, 3, 0.1]] as const) {
+  for (const [areaHa, cellSizeM] of [[2, 2], [20, 3]] as const) {
     for (const edgeM of [5, 12]) {
       const start = performance.now();
       const results = Array.from({ length: perKind }, (_, at) => {
         const k = 2 + (at % 4);
         const block = zonedBlock({ areaHa, cellSizeM, random: seededRandom(7 * (firstSeed + at) + edgeM), k, difficulty: 0.5, edgeM });
-        const { advisedK, candidates } = makeZoning({ grid: block.grid, layers: layersOf(block), options: { smallestPatchHa, seed: firstSeed + at } });
+        const { advisedK, candidates } = makeZoning({ grid: block.grid, layers: layersOf(block), options: { seed: firstSeed + at } });
         const inside = Array.from(block.grid.inside.keys()).filter((cell) => block.grid.inside[cell] === 1);
         const agreement = (number: number) => adjustedRandIndex(inside.map((cell) => block.truth[cell]!), inside.map((cell) => candidates[number - 1]!.labels[cell]!));
         return { k, advisedK, advised: agreement(advisedK), atTrue: agreement(k) };

@@ -14,6 +14,10 @@ describe('what is said of other numbers of zones', () => {
     expect(words(3, [5], [row(2, 8, 0.99), row(3, 9.1, 0.97), row(4, 8.9, 0.8), row(5, 9.3, 0.51)])).toBe('unsteady(5 zones, 51 %, 97 %)');
   });
 
+  it('says of one that stands out more and holds that the advised one lies in the middle', () => {
+    expect(words(3, [4], [row(2, 9, 0.9), row(3, 9.1, 0.9), row(4, 9.15, 0.88)])).toBe('middle(4 zones, 88 %, 90 %)');
+  });
+
   it('names those that are nearly as good, that hold better, or that are found again more surely', () => {
     expect(words(3, [2, 4], [row(2, 8, 0.95), row(3, 9.1, 0.7), row(4, 9.05, 0.68)])).toBe('doubtful(3 zones, 70 %, 70 %) holds(2 zones, 95 %, 70 %) close(4 zones, 68 %, 70 %)');
     expect(words(5, [3, 4], [row(3, 9.05, 0.95, 0.97), row(4, 9.01, 0.78, 0.91), row(5, 9.1, 0.85, 0.67)])).toBe('holds(3 zones, 95 %, 85 %) agrees(4 zones, 91 %, 67 %)');

@@ -103,11 +103,21 @@ describe('the number of zones', () => {
     expect(adviseZoneCount({ curve: [row(2, 0.5, 100), row(3, 0.5, 100)], layerCount: 2, workable: [2, 3] }).best).toBe(2);
   });
 
-  it('is the best of those whose every zone comes back from ground drawn anew, and the best of all is offered beside it', () => {
-    const curve = [row(2, 0.9, 100, 0.97), row(3, 1.4, 150, 0.9), row(4, 1.3, 160, 0.8), row(5, 1.5, 180, 0.55)];
-    expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 3, alsoOffer: [4, 5] });
+  it('is the median of the numbers under exp(score / √2 spread) × hold², by hand', () => {
+    // Spread 0.1 / √2, so that a difference of 0.1 is one unit of chance. Scores 0, 0.1, 0.2 weigh e⁻², e⁻¹ and 1: half of 1.503 lies in the last …
+    const even = (holds: readonly number[]) => [2, 3, 4].map((k, at) => ({ ...row(k, 0.1 * at, Math.E, holds[at]), gapSd: 0.1 / Math.SQRT2 }));
+    const advise = (holds: readonly number[]) => adviseZoneCount({ curve: even(holds), layerCount: 2, workable: [2, 3, 4] });
+    expect(advise([1, 1, 1]).best).toBe(4);
+    // … which holds to 0.6 and counts 0.36: half of 0.863 lies in the middle one, although the last has the highest score and is offered.
+    expect(advise([1, 1, 0.6]).best).toBe(3);
+    expect(advise([1, 1, 0.6]).alsoOffer).toContain(4);
+  });
+
+  it('is none with a zone that dissolves when ground is drawn anew, and the highest score is offered beside it', () => {
+    const curve = [row(2, 0.9, 100, 0.97), row(3, 1.5, 150, 0.9), row(4, 1.3, 140, 0.8), row(5, 1.7, 180, 0.45)];
+    expect(adviseZoneCount({ curve, layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 3, alsoOffer: [5] });
     // Where nothing holds, the score alone is left.
-    expect(adviseZoneCount({ curve: curve.map((one) => ({ ...one, holds: 0.5 })), layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 5, alsoOffer: [] });
+    expect(adviseZoneCount({ curve: curve.map((one) => ({ ...one, holds: 0.45 })), layerCount: 2, workable: [2, 3, 4, 5] })).toMatchObject({ best: 5, alsoOffer: [] });
   });
 
   it('offers a neighbour whose zones are stable where its own are not', () => {

@@ -129,7 +129,7 @@ describe('arguments of the zoning command', () => {
   });
 
   it('have usual values for what is left out', () => {
-    expect(read('--layer', 'vigour=a.tif')).toMatchObject({ zones: 'advise', layerWeights: 'advise', cellSizeM: 2, smallestPatchHa: 0.05, smoothingM: 3, seed: 1, reportPath: null, readingsPath: null });
+    expect(read('--layer', 'vigour=a.tif')).toMatchObject({ zones: 'advise', layerWeights: 'advise', cellSizeM: 2, smallestPatchHa: null, smoothingM: 3, seed: 1, reportPath: null, readingsPath: null });
   });
 
   it.each([

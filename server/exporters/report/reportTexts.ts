@@ -35,6 +35,7 @@ export const reportTexts = {
     number: {
       doubtful: 'The weakest of {zones} comes back only to {share} when ground is drawn anew: walk its borders before you rely on them.',
       unsteady: '{zones} stand out more, but the weakest of them comes back only to {share} when ground is drawn anew.',
+      middle: '{zones} stand out a little more, but hardly beyond chance; the advised number lies in the middle of those that are likely.',
       holds: '{zones} do nearly as well and hold better: the weakest comes back to {share}, against {own}.',
       agrees: '{zones} are found again more surely from half of the cells: {share} against {own}.',
       close: '{zones} do nearly as well.',
@@ -91,6 +92,7 @@ export const reportTexts = {
     number: {
       doubtful: 'La más débil de {zones} solo vuelve al {share} al sortear de nuevo el terreno: recorra sus límites antes de fiarse.',
       unsteady: '{zones} destacan más, pero la más débil solo vuelve al {share} al sortear de nuevo el terreno.',
+      middle: '{zones} destacan un poco más, pero apenas más que por azar; el número aconsejado está en medio de los probables.',
       holds: '{zones} quedan casi igual de bien y aguantan mejor: la más débil vuelve al {share}, frente al {own}.',
       agrees: '{zones} se vuelven a encontrar con más seguridad con la mitad de las celdas: {share} frente a {own}.',
       close: '{zones} quedan casi igual de bien.',
@@ -147,6 +149,7 @@ export const reportTexts = {
     number: {
       doubtful: 'La plus faible des {zones} ne revient qu’à {share} quand le terrain est retiré au sort : parcourez ses limites avant de vous y fier.',
       unsteady: '{zones} se détachent davantage, mais la plus faible ne revient qu’à {share} quand le terrain est retiré au sort.',
+      middle: '{zones} se détachent un peu plus, mais à peine au-delà du hasard ; le nombre conseillé est au milieu des nombres probables.',
       holds: '{zones} font presque aussi bien et tiennent mieux : la plus faible revient à {share}, contre {own}.',
       agrees: '{zones} se retrouvent plus sûrement avec la moitié des cellules : {share} contre {own}.',
       close: '{zones} font presque aussi bien.',
@@ -203,6 +206,7 @@ export const reportTexts = {
     number: {
       doubtful: 'La più debole di {zones} ritorna solo al {share} se il terreno è risorteggiato: ne percorra i confini prima di fidarsene.',
       unsteady: '{zones} risaltano di più, ma la più debole ritorna solo al {share} se il terreno è risorteggiato.',
+      middle: '{zones} risaltano un poco di più, ma appena oltre il caso; il numero consigliato sta in mezzo a quelli probabili.',
       holds: '{zones} vanno quasi altrettanto bene e reggono meglio: la più debole ritorna al {share}, contro il {own}.',
       agrees: '{zones} si ritrovano con più certezza da metà delle celle: {share} contro {own}.',
       close: '{zones} vanno quasi altrettanto bene.',
@@ -259,6 +263,7 @@ export const reportTexts = {
     number: {
       doubtful: 'A mais fraca de {zones} só volta a {share} quando o terreno é sorteado de novo: percorra os seus limites antes de confiar.',
       unsteady: '{zones} destacam-se mais, mas a mais fraca só volta a {share} quando o terreno é sorteado de novo.',
+      middle: '{zones} destacam-se um pouco mais, mas mal para além do acaso; o número aconselhado está no meio dos prováveis.',
       holds: '{zones} ficam quase tão bem e seguram melhor: a mais fraca volta a {share}, contra {own}.',
       agrees: '{zones} reencontram-se com mais segurança com metade das células: {share} contra {own}.',
       close: '{zones} ficam quase tão bem.',

@@ -2,6 +2,7 @@ import type { Transaction } from 'objection';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
 import { zoningOptions, type NewZoning, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
 import { ENGINE_VERSION } from '../../../shared/analysis/zoning.ts';
+import { smallestPatchFor } from '../../../shared/analysis/smallestPatch.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Unusable } from '../../errors.ts';
 import { loadBlockLayers } from '../../ground/zoneLayers.ts';
@@ -24,9 +25,10 @@ interface Asked {
  * together get a zoning each; every one is computed from all of them, so each can be repeated by itself.
  */
 export async function requestZoning(access: Access, blockId: string, input: NewZoning, today: string): Promise<Asked & { together: (Asked & { blockId: string })[] }> {
-  const options = zoningOptions.parse({ ...input, withBlocks: [...new Set(input.withBlocks)].filter((id) => id !== blockId) });
-  const all = [blockId, ...options.withBlocks];
+  const withBlocks = [...new Set(input.withBlocks)].filter((id) => id !== blockId);
+  const all = [blockId, ...withBlocks];
   const blocks = await Promise.all(all.map((id) => Block.query().findOne({ estateId: access.estateId, id }).whereNull('retiredAt').throwIfNotFound()));
+  const options = zoningOptions.parse({ ...input, withBlocks, smallestPatchHa: input.smallestPatchHa ?? smallestPatchFor(blocks[0]!.areaM2) });
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
   for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
   const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();

@@ -140,10 +140,12 @@ export function insideCells(grid: Grid): Int32Array {
 
 /** The values of a layer inside the block, without the missing ones, in the order of the cells; a new array. */
 export function valuesInside(grid: Grid, cells: Cells): Float32Array {
+  const { inside } = grid;
   const values = new Float32Array(cells.length);
   let count = 0;
   for (let cell = 0; cell < cells.length; cell++) {
-    if (grid.inside[cell] === 1 && !Number.isNaN(cells[cell]!)) values[count++] = cells[cell]!;
+    const value = cells[cell]!;
+    if (inside[cell] === 1 && !Number.isNaN(value)) values[count++] = value;
   }
   return values.slice(0, count);
 }

@@ -62,12 +62,13 @@ function momentsOf(values: Float32Array): { mean: number; sd: number; min: numbe
 }
 
 /** Share of the block's area in cells that have a value. */
-export function coverageOf(grid: Grid, cells: Cells): number {
+export function coverageOf({ share }: Grid, cells: Cells): number {
   let covered = 0;
   let total = 0;
   for (let cell = 0; cell < cells.length; cell++) {
-    total += grid.share[cell]!;
-    if (!Number.isNaN(cells[cell]!)) covered += grid.share[cell]!;
+    const part = share[cell]!;
+    total += part;
+    if (!Number.isNaN(cells[cell]!)) covered += part;
   }
   return total === 0 ? 0 : covered / total;
 }

@@ -5,6 +5,7 @@
 import type { Labels } from './grid.ts';
 import { PatchMerger } from './sieveMerger.ts';
 import { eachContact, findPatches, type Connectivity, type Patches } from './sievePatches.ts';
+import { eachPatchContact, patchRuns } from './sieveRuns.ts';
 
 export interface SieveOptions {
   /** Patches with fewer cells than this are removed. */
@@ -22,12 +23,22 @@ export function cellsForArea(areaHa: number, cellSizeM: number): number {
  * is left or a patch has no neighbour. Ties go to the larger neighbour, then to the lower label. Own rule for zones: the
  * longest border moves the least line on the ground.
  */
-export function sieveByBorder(labels: Labels, cols: number, { minCells, connectivity = 4 }: SieveOptions): Labels {
-  const patches = findPatches(labels, cols, connectivity);
-  if (!patches.sizes.some((size) => size < minCells)) return new Uint8Array(labels);
-  const merger = new PatchMerger(patches, minCells);
-  eachContact(patches, cols, connectivity, (a, b, isEdge) => merger.addBorder(a, b, isEdge ? 1 : 0));
-  return labelsOfPatches(patches, merger.mergeSmall());
+export function sieveByBorder(labels: Labels, cols: number, { minCells }: Pick<SieveOptions, 'minCells'>): Labels {
+  const runs = patchRuns(labels, cols);
+  const { sizes, patchOf, starts, ends } = runs;
+  const out = new Uint8Array(labels);
+  if (!sizes.some((size) => size < minCells)) return out;
+  const merger = new PatchMerger(runs, minCells);
+  eachPatchContact(runs, (a, b, edges) => {
+    // Only small patches ask for their neighbours; what two large ones share is never looked at.
+    if (sizes[a]! < minCells || sizes[b]! < minCells) merger.addBorder(a, b, edges);
+  });
+  const labelOf = merger.mergeSmall();
+  for (let run = 0; run < starts.length; run++) {
+    const patch = patchOf[run]!;
+    if (labelOf[patch] !== runs.labels[patch]) out.fill(labelOf[patch]!, starts[run], ends[run]);
+  }
+  return out;
 }
 
 /**

@@ -11,7 +11,7 @@ export class PatchMerger {
   private readonly labels: Uint8Array;
   private readonly minCells: number;
 
-  constructor(patches: Patches, minCells: number) {
+  constructor(patches: Pick<Patches, 'sizes' | 'labels'>, minCells: number) {
     this.borders = Array.from(patches.sizes, () => new Map<number, number>());
     this.mergedInto = Int32Array.from(patches.sizes.keys());
     this.sizes = new Int32Array(patches.sizes);

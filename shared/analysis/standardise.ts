@@ -37,10 +37,11 @@ export function standardise(grid: Grid, cells: Cells, { method = 'plain', clip =
   const [low = NaN, high = NaN] = quantilesOf(given, clip);
   for (let at = 0; at < given.length; at++) given[at] = Math.min(high, Math.max(low, given[at]!));
   const [centre, scale] = given.length === 0 ? [NaN, 0] : METHODS[method](given);
+  const { inside } = grid;
   const out = new Float32Array(cells.length).fill(NaN);
   for (let cell = 0; cell < cells.length; cell++) {
     const value = cells[cell]!;
-    if (grid.inside[cell] !== 1 || Number.isNaN(value)) continue;
+    if (inside[cell] !== 1 || Number.isNaN(value)) continue;
     out[cell] = scale > 0 ? (Math.min(high, Math.max(low, value)) - centre) / scale : 0;
   }
   return { cells: out, centre, scale, low, high };
@@ -51,9 +52,10 @@ function meanAndSd(values: Float32Array): readonly [number, number] {
   const origin = values[0]!;
   let sum = 0;
   let squares = 0;
-  for (const value of values) {
-    sum += value - origin;
-    squares += (value - origin) ** 2;
+  for (let at = 0; at < values.length; at++) {
+    const above = values[at]! - origin;
+    sum += above;
+    squares += above * above;
   }
   const mean = sum / values.length;
   return [origin + mean, Math.sqrt(Math.max(0, squares / values.length - mean * mean))];

@@ -42,7 +42,9 @@ export function evidenceField(grid: Grid, layers: readonly ArrayLike<number>[], 
 /** 1 for each cell inside the block that has every layer. */
 export function commonCells({ inside }: Grid, layers: readonly ArrayLike<number>[]): Uint8Array {
   const mask = new Uint8Array(inside);
-  for (const layer of layers) for (let cell = 0; cell < mask.length; cell++) if (Number.isNaN(layer[cell]!)) mask[cell] = 0;
+  for (const layer of layers) {
+    for (let cell = 0; cell < mask.length; cell++) if (Number.isNaN(layer[cell]!)) mask[cell] = 0;
+  }
   return mask;
 }
 
@@ -62,18 +64,30 @@ function averageSquares(plane: MaskedPlane, layers: readonly ArrayLike<number>[]
   const height = Math.ceil(plane.height / side);
   const counts = new Float64Array(width * height);
   const sums = layers.map(() => new Float64Array(width * height));
-  const squareCol = Int32Array.from({ length: plane.width }, (_, col) => Math.floor(col / side));
-  for (let row = 0, cell = 0; row < plane.height; row++) {
-    const firstSquare = Math.floor(row / side) * width;
-    for (let col = 0; col < plane.width; col++, cell++) {
-      if (plane.mask[cell] === 0) continue;
-      const square = firstSquare + squareCol[col]!;
-      counts[square]!++;
-      for (let l = 0; l < layers.length; l++) sums[l]![square]! += layers[l]![cell]!;
-    }
-  }
+  const inSquares = { side, width, plane };
+  addToSquares(counts, null, inSquares);
+  layers.forEach((layer, l) => addToSquares(sums[l]!, layer, inSquares));
   const mask = Uint8Array.from(counts, (cells) => (cells >= (side * side) / 2 ? 1 : 0));
   return { width, height, mask, layers: sums.map((sum) => sum.map((total, square) => (mask[square] === 1 ? total / counts[square]! : 0))) };
+}
+
+interface Squares {
+  readonly side: number;
+  /** Squares across. */
+  readonly width: number;
+  readonly plane: MaskedPlane;
+}
+
+/** Adds each masked cell's value to its square; without a layer each cell counts as one. */
+function addToSquares(sums: Float64Array, layer: ArrayLike<number> | null, { side, width, plane }: Squares): void {
+  const { mask } = plane;
+  for (let row = 0, cell = 0; row < plane.height; row++) {
+    let square = Math.floor(row / side) * width;
+    for (let col = 0, left = side; col < plane.width; col++, cell++, left--) {
+      if (left === 0) [square, left] = [square + 1, side];
+      if (mask[cell] !== 0) sums[square]! += layer === null ? 1 : layer[cell]!;
+    }
+  }
 }
 
 function standardiseField(raw: RawField, cellSizeM: number): EvidenceField {

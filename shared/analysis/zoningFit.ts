@@ -124,10 +124,12 @@ export interface CellZones {
 export function zonesOnGrid(grid: Grid, table: FeatureTable, fit: ZoneFit): CellZones {
   const labels = new Uint8Array(grid.inside.length);
   const doubt = new Float32Array(grid.inside.length).fill(NaN);
-  for (let point = 0; point < table.cells.length; point++) {
-    const cell = table.cells[point]!;
-    labels[cell] = fit.labels[point]! + 1;
-    doubt[cell] = fit.doubt[point]!;
+  const { cells } = table;
+  const { labels: zoneOf, doubt: doubtOf } = fit;
+  for (let point = 0; point < cells.length; point++) {
+    const cell = cells[point]!;
+    labels[cell] = zoneOf[point]! + 1;
+    doubt[cell] = doubtOf[point]!;
   }
   if (table.incomplete.length === 0) return { labels, doubt };
   const means = columnMeans(table, fit);

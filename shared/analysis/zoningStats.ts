@@ -59,9 +59,10 @@ export function zoneDifferences(zones: readonly Zone[], layers: readonly ZoningL
     });
 }
 
-function cellAreas(grid: Grid, labels: Labels, count: number): Float64Array {
+function cellAreas({ share, cellSizeM }: Grid, labels: Labels, count: number): Float64Array {
   const areas = new Float64Array(count + 1);
-  for (let cell = 0; cell < labels.length; cell++) areas[labels[cell]!] = areas[labels[cell]!]! + grid.share[cell]! * grid.cellSizeM ** 2;
+  const wholeM2 = cellSizeM ** 2;
+  for (let cell = 0; cell < labels.length; cell++) areas[labels[cell]!]! += share[cell]! * wholeM2;
   return areas;
 }
 
@@ -69,8 +70,9 @@ function doubtfulShares(labels: Labels, doubt: Cells, count: number): Float64Arr
   const cells = new Float64Array(count + 1);
   const doubtful = new Float64Array(count + 1);
   for (let cell = 0; cell < labels.length; cell++) {
-    cells[labels[cell]!] = cells[labels[cell]!]! + 1;
-    if (doubt[cell]! > DOUBTFUL_ABOVE) doubtful[labels[cell]!] = doubtful[labels[cell]!]! + 1;
+    const zone = labels[cell]!;
+    cells[zone]! += 1;
+    if (doubt[cell]! > DOUBTFUL_ABOVE) doubtful[zone]! += 1;
   }
   return doubtful.map((value, zone) => (cells[zone]! > 0 ? value / cells[zone]! : 0));
 }
@@ -82,13 +84,15 @@ function momentsByZone(labels: Labels, cells: Cells, count: number): { n: number
   const squares = new Float64Array(count + 1);
   let origin = NaN;
   for (let cell = 0; cell < labels.length; cell++) {
-    const value = cells[cell]!;
     const zone = labels[cell]!;
-    if (zone === 0 || Number.isNaN(value)) continue;
+    if (zone === 0) continue;
+    const value = cells[cell]!;
+    if (Number.isNaN(value)) continue;
     if (Number.isNaN(origin)) origin = value;
-    n[zone] = n[zone]! + 1;
-    sums[zone] = sums[zone]! + (value - origin);
-    squares[zone] = squares[zone]! + (value - origin) ** 2;
+    const above = value - origin;
+    n[zone]! += 1;
+    sums[zone]! += above;
+    squares[zone]! += above * above;
   }
   return Array.from(n, (cellCount, zone) => {
     if (cellCount === 0) return { n: 0, mean: null, sd: null };

@@ -3,7 +3,8 @@ import { cellsPerLabel, highestLabel, majorityFiltered, meanPerLabel, numbersByM
 import { wideShare } from '../../shared/analysis/labelsWidth.ts';
 import { randomIndex, seededRandom } from '../../shared/analysis/random.ts';
 import { cellsForArea, sieveByBorder, sieveByLargestNeighbour, smallPatches } from '../../shared/analysis/sieve.ts';
-import { findPatches } from '../../shared/analysis/sievePatches.ts';
+import { eachContact, findPatches } from '../../shared/analysis/sievePatches.ts';
+import { eachPatchContact, patchRuns } from '../../shared/analysis/sieveRuns.ts';
 import { picture, shown } from './pictures.ts';
 
 describe('labels', () => {
@@ -53,6 +54,17 @@ describe('the majority filter', () => {
     });
     expect(labels).toEqual(before);
   });
+
+  it('passed several times is the filter of what it left', () => {
+    const random = seededRandom(6);
+    for (const [cols, rows] of [[1, 9], [9, 1], [23, 19]] as const) {
+      const labels = Uint8Array.from({ length: cols * rows }, () => randomIndex(random, 4));
+      const twice = majorityFiltered(majorityFiltered(labels, cols), cols);
+      if (cols === 23) expect(twice).not.toEqual(majorityFiltered(labels, cols));
+      expect(majorityFiltered(labels, cols, 2)).toEqual(twice);
+      expect(majorityFiltered(labels, cols, 3)).toEqual(majorityFiltered(twice, cols));
+    }
+  });
 });
 
 describe('patches', () => {
@@ -65,6 +77,21 @@ describe('patches', () => {
     };
     expect(sizes(4)).toEqual(['1:1', '1:1', '1:13', '2:17', '3:1', '3:3']);
     expect(sizes(8)).toEqual(['1:1', '1:14', '2:17', '3:1', '3:3']);
+  });
+
+  // Second method: cell by cell instead of run by run.
+  it('of runs and their contacts are those of cells', () => {
+    const random = seededRandom(8);
+    for (const [width, height] of [[1, 12], [12, 1], [13, 11], [30, 20]] as const) {
+      const mixed = Uint8Array.from({ length: width * height }, () => randomIndex(random, 4));
+      const [runs, patches] = [patchRuns(mixed, width), findPatches(mixed, width)];
+      expect([runs.sizes, runs.labels]).toEqual([patches.sizes, patches.labels]);
+      const [byRuns, byCells] = [new Map<string, number>(), new Map<string, number>()];
+      const add = (lengths: Map<string, number>, a: number, b: number, edges: number) => lengths.set(`${Math.min(a, b)} ${Math.max(a, b)}`, (lengths.get(`${Math.min(a, b)} ${Math.max(a, b)}`) ?? 0) + edges);
+      eachPatchContact(runs, (a, b, edges) => add(byRuns, a, b, edges));
+      eachContact(patches, width, 4, (a, b) => add(byCells, a, b, 1));
+      expect([...byRuns].sort()).toEqual([...byCells].sort());
+    }
   });
 
   it('below a minimum are listed with a cell to show them by', () => {

@@ -7,7 +7,7 @@ import { makeApp } from './app.ts';
 import { readConfig } from './config.ts';
 import { openDatabase } from './db.ts';
 import { prepareQueue } from './jobs/queue.ts';
-import { startRunner } from './jobs/runner.ts';
+import { startJobProcess } from './jobs/jobProcess.ts';
 import { log, setLogLevel } from './log.ts';
 import { makeTransport } from './mail/transport.ts';
 import { openFileStore } from './storage/fileStore.ts';
@@ -24,7 +24,7 @@ async function main(): Promise<void> {
   await prepareQueue(config.databaseUrl);
   await openFileStore(config.dataFolder);
   openComputePool(config.computeThreads);
-  const runner = await startRunner(config.databaseUrl);
+  const jobs = startJobProcess();
   const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });
   const mailTimer = setInterval(() => void mail.flush().catch((error: unknown) => log.error('mail', error)), mailEveryMs);
   const sweep = () => void dropForgotten(new Date()).catch((error: unknown) => log.error('unfinished uploads', error));
@@ -41,7 +41,7 @@ async function main(): Promise<void> {
     clearInterval(sweepTimer);
     server.closeAllConnections();
     server.close();
-    await runner.stop().catch(() => undefined);
+    await jobs.stop();
     await closeComputePool();
     mail.close();
     await sessionPool.end();

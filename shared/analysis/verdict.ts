@@ -23,6 +23,7 @@ export type VerdictReasonCode =
   | 'not-tested-on-fruit'
   | 'few-readings'
   | 'fruit-agrees'
+  | 'fruit-silent'
   | 'fruit-unclear'
   | 'fruit-disagrees';
 

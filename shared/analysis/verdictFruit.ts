@@ -34,13 +34,16 @@ export function checkOnFruit(measures: readonly MeasureReadings[], random: Rando
   return { state: p <= AGREES_BELOW ? 'agrees' : p > DISAGREES_ABOVE ? 'disagrees' : 'unclear', tests };
 }
 
-/** Adds what the fruit says to the reasons and takes "several" back when it disagrees. */
+/** Adds what the fruit says to the reasons, for each measure with readings enough, and takes "several" back when it disagrees. */
 export function withFruit(result: VerdictResult, { state, tests }: FruitCheck): VerdictResult {
   const codes = { untested: 'not-tested-on-fruit', few: 'few-readings', agrees: 'fruit-agrees', unclear: 'fruit-unclear', disagrees: 'fruit-disagrees' } as const;
+  const asked = state === 'few' ? tests : tests.filter(({ n }) => n >= LEAST_READINGS);
+  // Where one measure agrees the others need not: a picker must know whether it is the sugar.
+  const codeOf = ({ p }: ReadingsTest) => (state === 'agrees' && p * asked.length > AGREES_BELOW ? 'fruit-silent' : codes[state]);
   const added: VerdictReason[] =
     tests.length === 0
       ? [reason(codes[state], null, {})]
-      : tests.map((test) => reason(codes[state], test.measure, { n: test.n, rSquared: test.leaveOneOutRSquared, p: test.p, limit: state === 'few' ? LEAST_READINGS : AGREES_BELOW }));
+      : asked.map((test) => reason(codeOf(test), test.measure, { n: test.n, rSquared: test.leaveOneOutRSquared, p: test.p, limit: state === 'few' ? LEAST_READINGS : AGREES_BELOW }));
   const verdict = state === 'disagrees' && result.verdict === 'several' ? 'test' : result.verdict;
   return { ...result, verdict, reasons: [...result.reasons, ...added] };
 }

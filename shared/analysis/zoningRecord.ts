@@ -31,7 +31,7 @@ export function evidenceRows(quality: readonly FitQuality[], { curve, scores }: 
 }
 
 /** More vines than this outside their own zone, and following the rows has changed what was found (judgement). */
-const MUCH_AGAINST_GROUND = 0.2;
+const MUCH_AGAINST_GROUND = 0.1;
 
 export interface WarningInput {
   readonly chosen: ZoningCandidate;

@@ -273,6 +273,15 @@ describe('readings of fruit', () => {
     expect(testOnReadings(zoned([[1, 2, 3], [7, 8, 9]], [['a', 'a', 'b'], ['c', 'c', 'd']]), seededRandom(1)).shuffle).toBe('free');
   });
 
+  it('agree by name: a measure that does not show the zones is not said to, and one with few readings is not judged', () => {
+    const several = judge({ areaM2: 20_000, layerIds: ['a', 'b'], structures: [0.4, 0.5].map((structure) => ({ structure, byDirection: [], isStriped: false })), curve: [{ k: 2, withinShare: 0.2, gap: 1, gapSd: 0.1, separation: 9, holds: 1 }] });
+    const check = checkOnFruit([{ measure: 'ph', readings: vines(2, 1) }, { measure: 'brix', readings: vines(0, 3) }, { measure: 'ta', readings: vines(2, 4).slice(0, 20) }], seededRandom(1));
+    expect(check.state).toBe('agrees');
+    const { verdict, reasons } = withFruit(several, check);
+    expect(verdict).toBe('several');
+    expect(reasons.filter(({ code }) => code.startsWith('f')).map(({ code, about }) => [code, about])).toEqual([['fruit-agrees', 'ph'], ['fruit-silent', 'brix']]);
+  });
+
   it('take several back to worth testing when enough of them disagree', () => {
     const several = judge({ areaM2: 20_000, layerIds: ['a', 'b'], structures: [0.4, 0.5].map((structure) => ({ structure, byDirection: [], isStriped: false })), curve: [{ k: 2, withinShare: 0.2, gap: 1, gapSd: 0.1, separation: 9, holds: 1 }] });
     const disagrees = checkOnFruit([{ measure: 'brix', readings: vines(0, 3) }], seededRandom(1));

@@ -31,6 +31,7 @@ export interface ZoneReport {
   seed: number;
   smoothingM: number;
   smallestPatchHa: number;
+  borders: 'free' | 'wholeRow' | 'partRow';
 }
 
 export interface ReportLayer {

@@ -145,7 +145,8 @@ function layerTable(page: Page, report: ZoneReport, { texts, figure, day }: Word
 function method(page: Page, report: ZoneReport, { texts, length, patch }: Words): void {
   keepRoom(page, 70);
   heading(page, texts.how as string);
-  paragraph(page, filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch }));
+  const made = filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch });
+  paragraph(page, report.borders === 'free' ? made : `${made} ${texts[report.borders]}`);
 }
 
 function limits(page: Page, report: ZoneReport, { texts, length }: Words): void {

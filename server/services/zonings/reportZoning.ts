@@ -37,7 +37,7 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
     layers: await layersOf(access, view),
     zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
     boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
-    smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa,
+    smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa, borders: view.options.borders,
   });
   await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });
   return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };

@@ -17,7 +17,8 @@ export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; 
   const codes = new Set(zoning.reasons.map((reason) => reason.code));
   const first = ['no-measured-layer', 'no-structure', 'plateaus', 'slope-only'].find((code) => codes.has(code));
   const fruit = ['fruit-agrees', 'fruit-disagrees', 'fruit-unclear', 'few-readings', 'not-tested-on-fruit'].find((code) => codes.has(code));
-  const sentences = [first, fruit].flatMap((code) => (code ? [reasonWords(zoning, code, { t, format })] : []));
+  const silent = codes.has('fruit-silent') ? 'fruit-silent' : undefined;
+  const sentences = [first, fruit, silent].flatMap((code) => (code ? [reasonWords(zoning, code, { t, format })] : []));
   const also = ['too-small', 'stripes-evened', 'one-layer'].filter((code) => codes.has(code)).map((code) => reasonWords(zoning, code, { t, format }));
   return { answer, rest: sentences.join(' '), below: [...also, differenceWords(zoning, { t, format }), t('zones.saysNothing')].filter((text) => text !== '').join(' ') };
 }

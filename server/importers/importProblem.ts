@@ -75,7 +75,8 @@ export async function naming<T>(file: string, read: () => Promise<T>): Promise<T
       if (error.file !== null) throw error;
       throw new ImportProblem({ code: error.code, fact: error.fact, remedy: error.remedy, params: error.params, file, cause: error.cause });
     }
-    const detail = error instanceof Error ? error.message.slice(0, 160) : 'unknown error';
+    // A library's advice to its own users comes after its first sentence.
+    const detail = error instanceof Error ? error.message.split(/\.\s/)[0]!.slice(0, 160) : 'unknown error';
     throw new ImportProblem({
       code: 'damaged',
       fact: `Its contents cannot be followed (${detail}).`,

@@ -59,7 +59,8 @@ export const newBlock = z.object({
 export type NewBlock = z.infer<typeof newBlock>;
 export type NewBlockInput = z.input<typeof newBlock>;
 
-export const blockChange = z.object({ name: shortName, boundary: areaGeometry, ...facts }).partial();
+/** `rowsMayGo`: somebody has been told what building the rows anew loses, and wants it. */
+export const blockChange = z.object({ name: shortName, boundary: areaGeometry, ...facts, rowsMayGo: z.boolean() }).partial();
 export type BlockChange = z.infer<typeof blockChange>;
 
 /** Noticed about an outline that can be used all the same. */
@@ -127,6 +128,12 @@ export type BlockView = z.infer<typeof blockView>;
 /** What a change of outline or planting did to rows and layers. */
 export const rowEffects = z.object({ kept: z.number().int(), made: z.number().int(), retired: z.number().int(), marksLost: z.number().int() });
 export type RowEffects = z.infer<typeof rowEffects>;
+
+/** What building rows anew would cost: a survey, rows that readings, targets or lots refer to, marks of vines. */
+export interface RowsAtStake extends RowEffects {
+  surveyed: boolean;
+  referred: number;
+}
 
 /** The block as it is now, with what the change did; `jobId` follows layers being placed again. */
 export const changedBlock = z.object({ ...blockView.shape, rowEffects: rowEffects.nullable(), jobId: id.nullable() });

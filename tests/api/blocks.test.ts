@@ -174,7 +174,10 @@ describe('changing a block', () => {
     await Reading.query().insert({ id: randomUUID(), estateId: estate.estateId, seasonId: season.id, blockId: block.id, rowId: before[0]!.id, ordinal: 40, measureCode: 'clusterCount', value: 21, unit: 'clusters', takenAt: new Date(), source: 'field' } as never);
     await owner.put(`${base()}/blocks/${block.id}/vines`, { marks: [{ rowId: before[0]!.id, ordinal: 1, state: 'missing' }, { rowId: before[1]!.id, ordinal: 33, state: 'missing' }] });
     // 66 vines of 1.5 m become 90 of 1.1 m: (100 - 1.1) / 1.1 = 89.9.
-    const changed = await owner.write('patch', `${base()}/blocks/${block.id}`).set('if-match', '"1"').send({ vineSpacingM: 1.1 });
+    const asked = await owner.write('patch', `${base()}/blocks/${block.id}`).set('if-match', '"1"').send({ vineSpacingM: 1.1 });
+    expect(asked.status).toBe(409);
+    expect(asked.body).toMatchObject({ code: 'rowsAtStake', atStake: { surveyed: false, retired: 1, referred: 1 } });
+    const changed = await owner.write('patch', `${base()}/blocks/${block.id}`).set('if-match', '"1"').send({ vineSpacingM: 1.1, rowsMayGo: true });
     expect(changed.body.rowEffects).toMatchObject({ kept: 23, made: 1, retired: 1 });
     const after = (await owner.get(`${base()}/blocks/${block.id}/rows`)).body.items as { id: string; vineCount: number }[];
     expect(after[0]!.id).not.toBe(before[0]!.id);

@@ -100,6 +100,24 @@ describe('a file of lines', () => {
     expect(refused.body.detail).toMatch(/roads\.geojson: Its lines lie 30\.0 m apart; rows of vines lie 0\.5 to 12 m apart\./);
   });
 
+  it('that were surveyed are not built anew by a change of spacing before somebody agrees', async () => {
+    const before = await rows();
+    const path = `${base()}/blocks/${block.id}`;
+    const version = async () => `"${(await agent.get(path)).body.version}"`;
+    const asked = await agent.write('patch', path).set('if-match', await version()).send({ rowSpacingM: 2 });
+    expect(asked.status).toBe(409);
+    expect(asked.body).toMatchObject({ code: 'rowsAtStake', atStake: { surveyed: true, marksLost: 0, referred: 0 } });
+    expect(asked.body.detail).toMatch(/surveyed rows would be laid by spacing and bearing/);
+    expect(await rows()).toEqual(before);
+    expect((await agent.get(path)).body.rowSpacingM).toBe(4);
+    expect((await agent.write('patch', path).set('if-match', await version()).send({ notes: 'Drain in the east.' })).status).toBe(200);
+    const agreed = await agent.write('patch', path).set('if-match', await version()).send({ rowSpacingM: 2, rowCount: null, rowsMayGo: true });
+    expect(agreed.status, agreed.text).toBe(200);
+    expect(agreed.body.rowEffects.made).toBeGreaterThan(20);
+    // Built rows are asked about no more.
+    expect((await agent.write('patch', path).set('if-match', await version()).send({ rowSpacingM: 2.5 })).status).toBe(200);
+  });
+
   it('beside every block changes nothing', async () => {
     const before = await rows();
     const refused = await bring('beside.geojson', rowLines({ shift: 120, to: 6 }), { purpose: 'rows', rowLabelField: 'label' });

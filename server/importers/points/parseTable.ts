@@ -1,4 +1,5 @@
 import Papa from 'papaparse';
+import { usableName } from '../fieldNames.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { limits } from '../limits.ts';
 import type { ImportWarning } from '../understood.ts';
@@ -78,7 +79,7 @@ function columnNames(head: readonly string[], width: number, warnings: ImportWar
   const used = new Set<string>();
   const doubled: string[] = [];
   const names = Array.from({ length: width }, (_, i) => {
-    const plain = (head[i] ?? '').slice(0, 120) || `column ${i + 1}`;
+    const plain = usableName(head[i] ?? '').slice(0, 120) || `column ${i + 1}`;
     const name = used.has(plain) ? `${plain} (${i + 1})` : plain;
     if (name !== plain) doubled.push(plain);
     used.add(name);

@@ -27,7 +27,7 @@ export function checkPlacement(outline: readonly XYPair[], reference: ReferenceS
   const isPlaced = ring.every((position) => position !== null);
   const [x, y] = outline[0] ?? [NaN, NaN];
   if (!isPlaced || (reference.unitM !== null && looksLikeDegrees(outline))) {
-    const why = `The file says it is in ${reference.name}, but its coordinates (${short(x)}, ${short(y)}) ${isPlaced ? 'look like degrees' : 'cannot be of that system'}.`;
+    const why = `${reference.from === 'answer' ? 'Taken as' : 'The file says it is in'} ${reference.name}, ${reference.from === 'answer' ? '' : 'but '}its coordinates (${short(x)}, ${short(y)}) ${isPlaced ? 'look like degrees' : 'cannot be of that system'}.`;
     return { outlineLonLat: null, questions: [referenceQuestion(outline, estateLonLat, why)], warnings: [] };
   }
   if (estateLonLat === null) return { outlineLonLat: ring, questions: [], warnings: [] };

@@ -1,4 +1,5 @@
 import type { Feature, Geometry } from 'geojson';
+import { withUsableNames } from '../fieldNames.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { limits } from '../limits.ts';
 import { referenceQuestion } from '../reference/candidates.ts';
@@ -32,7 +33,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const warnings: ImportWarning[] = [...found.warnings];
   checkSize(layers);
   const notes = noNotes();
-  const cleaned = layers.map((layer) => ({ name: layer.name, features: layer.features.map((feature) => ({ properties: feature.properties, geometry: feature.geometry === null ? null : cleanGeometry(feature.geometry, notes) })) }));
+  const cleaned = layers.map((layer) => ({ name: layer.name, features: layer.features.map((feature) => ({ properties: withUsableNames(feature.properties), geometry: feature.geometry === null ? null : cleanGeometry(feature.geometry, notes) })) }));
   const outline = boxOf(cleaned);
   if (outline === null) throw new ImportProblem({ code: 'no-layer', fact: layers.every(({ features }) => features.length === 0) ? 'It holds no shapes.' : 'None of its shapes has usable coordinates.', remedy: 'Export the layer again and check that it is not empty.', params: { why: layers.every(({ features }) => features.length === 0) ? 'no-shapes' : 'no-usable-shapes' } });
   const reference = options.answers?.epsg === undefined ? named : referenceFromAnswer(options.answers.epsg);
@@ -45,6 +46,8 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   warnings.push(...(placement?.warnings ?? []), ...noteWarnings(notes));
   const datum = reference === null ? null : datumWarning(reference);
   if (datum !== null) warnings.push(datum);
+  const farthest = Math.max(...(placement?.outlineLonLat ?? []).map(([, lat]) => Math.abs(lat)));
+  if (farthest > farthestLatitude) throw new ImportProblem({ code: 'bad-geometry', fact: `Its shapes reach to latitude ${Math.round(farthest)}, beyond every map of fields.`, remedy: 'Send only the shapes of the estate, with longitude before latitude.', params: { why: 'beyond-maps', latitude: Math.round(farthest) } });
   const usable = placement?.outlineLonLat === null || placement === null ? null : reference;
   const repairs: GeometryRepair[] = [];
   const out: VectorLayer[] = [];
@@ -53,6 +56,9 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   warnings.push(...repairs.map(repairWarning));
   return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions: withSample(questions, sample, reference), warnings };
 }
+
+/** UTM, in which areas are measured, ends at 80 degrees south and 84 north. */
+const farthestLatitude = 80;
 
 interface CleanLayer {
   name: string;

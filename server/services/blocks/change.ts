@@ -14,6 +14,7 @@ import { fromGeoJson } from '../../models/geometry.ts';
 import { Layer } from '../../models/Layer.ts';
 import { checkOutline } from './outlines.ts';
 import { rebuildRows } from './rebuildRows.ts';
+import { hasSurveyedRows, requireNothingAtStake } from './rowsAtStake.ts';
 import { findBlock, viewBlock } from './view.ts';
 
 /** What an outline would come to: area, overlaps, distance. Saves nothing. */
@@ -52,12 +53,12 @@ export async function insertBlock(trx: Transaction, access: Access, { id, input,
 
 const rowFacts = ['rowBearingDeg', 'rowSpacingM', 'vineSpacingM', 'rowCount', 'headlandM', 'rowOneSide', 'firstRowLabel'] as const;
 
-/** Changes facts or outline of a block that is still at the version the change was made on. */
+/** Changes facts or outline of a block that is still at the version the change was made on. Asks first where building its rows anew would lose something. */
 export async function changeBlock(access: Access, blockId: string, change: BlockChange, made: { version: number; now: Date }): Promise<ChangedBlock> {
   const { now } = made;
   const done = await Block.transaction(async (trx) => {
     const before = await lockBlock(trx, access, blockId, made);
-    const { boundary, gate, ...facts } = change;
+    const { boundary, gate, rowsMayGo = false, ...facts } = change;
     if (change.name !== undefined) await requireFreeName(trx, access, blockId, change.name);
     const after = { ...before, ...facts } as Block;
     const polygons = before.boundary.coordinates as unknown as MultiPolygonLonLat;
@@ -74,7 +75,9 @@ export async function changeBlock(access: Access, blockId: string, change: Block
         version: before.version + 1,
       });
     const newRows = outline !== null || rowFacts.some((fact) => after[fact] !== before[fact]);
+    const surveyed = newRows && !rowsMayGo && (await hasSurveyedRows(trx, before));
     const rows = newRows ? await rebuildRows(trx, { ...after, id: blockId, boundary: area.polygons, epsg: area.epsg }, now) : null;
+    if (rows !== null && !rowsMayGo) await requireNothingAtStake(trx, before, { surveyed, effects: rows.effects, now });
     await writeAudit(trx, access, { action: 'block.change', subjectType: 'block', subjectId: blockId, subjectName: after.name, ...difference(before, change, area.areaM2) });
     const jobId = gridKey === before.gridKey ? null : await placeLayersOn(trx, access, blockId);
     return { rows: rows?.effects ?? (null as RowEffects | null), jobId, warnings: [...area.warnings, ...(rows?.warnings ?? [])] };
@@ -124,7 +127,7 @@ async function placeLayersOn(trx: Transaction, access: Access, blockId: string):
 }
 
 function difference(before: Block, change: BlockChange, areaM2: number): { before: Record<string, unknown>; after: Record<string, unknown> } {
-  const { boundary, ...facts } = change;
+  const { boundary, rowsMayGo: _, ...facts } = change;
   const changed = Object.keys(facts).filter((fact) => JSON.stringify(before[fact as keyof Block]) !== JSON.stringify(facts[fact as keyof typeof facts])) as (keyof typeof facts)[];
   const pick = (from: Partial<Record<keyof typeof facts, unknown>>) => Object.fromEntries(changed.map((fact) => [fact, from[fact]]));
   return {

@@ -50,6 +50,10 @@ export type BasisMeasure = z.infer<typeof basisMeasure>;
 export const basisZone = z.object({ id, number: z.number().int(), name: z.string(), colour: z.string().nullable(), vines: z.number().int(), eligible: z.number().int(), /** Zone numbers that it stands for, where zones are sampled as one. */ members: z.array(z.number().int()).optional() });
 export type BasisZone = z.infer<typeof basisZone>;
 
+/** What a walk past so many vines takes at the usual pace, on level ground and on the block's slopes. */
+export const walkExpected = z.object({ vines: z.number(), levelS: z.number(), slopedS: z.number() });
+export type WalkExpected = z.infer<typeof walkExpected>;
+
 /** What a plan is computed from: the browser computes the same answer from it as the server stores. */
 export const planBasis = z.object({
   zoningId: id,
@@ -62,6 +66,10 @@ export const planBasis = z.object({
   measures: z.array(basisMeasure),
   /** The latest pilot of this block and season, and how many of its vines were read. */
   pilot: z.object({ planId: id, name: z.string(), vines: z.number().int(), read: z.number().int() }).nullable().default(null),
+  /** Walks tried on this block, few vines to many; none in plans that were made before walks were tried, whose time per vine holds the way to it. */
+  walks: z.array(walkExpected).default([]),
+  /** Whether `walks` are those of vines that were drawn: then their time is no estimate. */
+  isWalkLaid: z.boolean().default(false),
   settings: z.object({ floorVines: z.number(), impracticalSamples: z.number(), dayHours: z.number(), costPerHour: z.number(), currency: z.string() }),
 });
 export type PlanBasis = z.infer<typeof planBasis>;

@@ -91,14 +91,18 @@ export const planChoices = z.object({
   /** Speak for the vines of this zone, or for more than them (the process, another season): then no zone runs out of vines. */
   population: z.enum(['zone', 'endless']).default('zone'),
   draw: drawChoices.prefault({}),
+  /** Share of the vines drawn in each zone that get a reserve vine, in the order of the draw. */
+  reserveShare: z.number().min(0).max(1).default(1),
   pace: paceChoices.prefault({}),
   /** Plan with the upper limit of the spread (`spread.upperLevel`), instead of the estimate. */
   isCautious: z.boolean().default(false),
   /** Least vines in a zone; the estate's own when left out. */
   minimum: z.number().int().min(2).max(200).optional(),
   limits: z.object({ visitsPerZone: z.number().int().min(2).max(2000).optional(), hours: z.number().positive().max(1000).nullable().optional() }).default({}),
-  /** Walking to a vine and setting up there. */
-  secondsPerVine: z.number().min(0).max(3600).default(45),
+  /** Finding a vine and setting up there; with the way to it in plans whose basis has no walks. */
+  secondsPerVine: z.number().min(0).max(3600).default(15),
+  /** Seconds more at each vine of a zone, by its number: steep, netted or dense ground. */
+  zoneSeconds: z.record(z.string(), z.number().min(0).max(3600)).default({}),
   moneyPerHour: z.number().min(0).max(10_000).optional(),
   people: z.number().int().min(1).max(20).default(1),
 });

@@ -19,7 +19,10 @@ export interface PlanDrawRequest {
   readonly gateXY: XY;
   /** Vines of each zone, and samples of each measure there. */
   readonly wanted: readonly { readonly zone: number; readonly visits: number; readonly counts: readonly number[] }[];
-  readonly measures: readonly { readonly code: string; readonly secondsPerSample: number }[];
+  readonly measures: readonly string[];
+  /** Seconds at a vine of a zone for the measures taken there. */
+  readonly secondsAt: (zone: number, measures: readonly string[]) => number;
+  readonly reserveShare?: number;
   readonly seed: number;
   readonly ground?: PacedGround;
 }
@@ -46,14 +49,13 @@ export interface PlanDraw {
 
 /** Target vines of a plan in walking order, and what the walk from the gate and back takes. */
 export function drawPlan(request: PlanDrawRequest): PlanDraw {
-  const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, seed } = request;
-  const zones = drawTargets({ table, zoneOfVine, unusable, seed, ...(nearBorder ? { nearBorder } : {}), ...(rule ? { rule } : {}), wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
+  const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, secondsAt, seed, reserveShare } = request;
+  const zones = drawTargets({ table, zoneOfVine, unusable, seed, ...(nearBorder ? { nearBorder } : {}), ...(rule ? { rule } : {}), ...(reserveShare === undefined ? {} : { reserveShare }), wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
   const drawn = zones.flatMap((draw, i) =>
-    draw.targets.map((target) => ({ ...target, zone: draw.zone, measures: measures.filter((_, j) => target.drawOrder <= wanted[i]!.counts[j]!).map(({ code }) => code) })));
+    draw.targets.map((target) => ({ ...target, zone: draw.zone, measures: measures.filter((_, j) => target.drawOrder <= wanted[i]!.counts[j]!) })));
   if (drawn.length === 0) return { zones, targets: [], lengthM: 0, walkingS: 0, serviceS: 0, isGroundAssumedOpen: false };
   const { walk, assumedOpen } = walkBlock({ rows, vines: drawn, gateXY, ...(request.ground ? { ground: request.ground } : {}) });
-  const secondsOf = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
-  const time = walkTime(walk, (target) => drawn[target]!.measures.reduce((sum, code) => sum + secondsOf.get(code)!, 0));
+  const time = walkTime(walk, (target) => secondsAt(drawn[target]!.zone, drawn[target]!.measures));
   return {
     zones,
     targets: walk.stops.map(({ target }, i) => ({ ...drawn[target]!, walkOrder: i + 1 })),

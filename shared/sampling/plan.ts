@@ -10,6 +10,7 @@ import { pilotQuotas } from './pilot.ts';
 import { planCounts, planOfVisits, type PlanCounts, type PlanMeasure, type PlanQuestion } from './planCounts.ts';
 import { choicesJoined, pooledBasis } from './pooledZones.ts';
 import { marginLadder, tradeOffCurves, type TradeOffCurve } from './tradeOff.ts';
+import { walkSeconds } from './walkEstimate.ts';
 
 /**
  * A plan from what is known of the ground (basis) and what a person chooses. The browser calls this while a slider
@@ -56,13 +57,31 @@ export function answerTradeOff(basis: PlanBasis, choices: PlanChoices, code: str
 export function questionOf(unpooled: PlanBasis, choices: PlanChoices): PlanQuestion {
   const basis = pooledBasis(unpooled, choices.pools);
   return {
-    zones: basis.zones.map(({ number, vines, eligible }) => ({ zone: String(number), vines, eligibleVines: eligible })),
+    zones: basis.zones.map((zone) => ({ zone: String(zone.number), vines: zone.vines, eligibleVines: zone.eligible, secondsMore: secondsMoreIn(unpooled, choices, zone.members ?? [zone.number]) })),
     measures: choices.measures.map((choice) => measureOf(basis, choices, choice)),
     question: choices.question,
     method: choices.allocation,
-    effort: { secondsPerVine: choices.secondsPerVine, moneyPerHour: choices.moneyPerHour ?? basis.settings.costPerHour },
+    effort: {
+      secondsPerVine: choices.secondsPerVine,
+      ...(basis.walks.length > 0 ? { walkSeconds: (vines: number) => walkSeconds(basis.walks, vines, choices.pace) } : {}),
+      moneyPerHour: choices.moneyPerHour ?? basis.settings.costPerHour,
+    },
     minimum: minimumOf(basis, choices),
   };
+}
+
+/** Seconds more at each vine of zones that are sampled as one: by their vines. */
+function secondsMoreIn({ zones }: PlanBasis, { zoneSeconds }: PlanChoices, members: readonly number[]): number {
+  const inPool = zones.filter(({ number }) => members.includes(number));
+  const vines = inPool.reduce((sum, zone) => sum + zone.vines, 0);
+  return inPool.reduce((sum, zone) => sum + (zone.vines / vines) * (zoneSeconds[String(zone.number)] ?? 0), 0);
+}
+
+/** Seconds at a vine of each zone, as they are sampled, for the measures taken there. */
+export function secondsAtVine({ zones, measures, effort }: PlanQuestion): (zone: number, codes: readonly string[]) => number {
+  const more = new Map(zones.map(({ zone, secondsMore = 0 }) => [Number(zone), secondsMore]));
+  const perSample = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
+  return (zone, codes) => effort.secondsPerVine + (more.get(zone) ?? 0) + codes.reduce((sum, code) => sum + (perSample.get(code) ?? 0), 0);
 }
 
 function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot, population }: PlanChoices, choice: PlanChoices['measures'][number]): PlanMeasure {

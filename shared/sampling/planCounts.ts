@@ -17,6 +17,8 @@ export interface PlanZone {
   readonly vines: number;
   /** Vines that may be drawn (edge rows and the like left out); all of them when left out. */
   readonly eligibleVines?: number;
+  /** Seconds at each vine here beyond the plan's `secondsPerVine`. */
+  readonly secondsMore?: number;
 }
 
 export interface PlanMeasure {
@@ -44,9 +46,10 @@ export interface PilotSpread {
 }
 
 export interface PlanEffort {
-  /** Walking to a vine and setting up, shared by all measures taken there. */
+  /** Finding a vine and setting up, shared by all measures taken there; with the way to it where `walkSeconds` is left out. */
   readonly secondsPerVine: number;
-  readonly secondsPerZone?: number;
+  /** On foot past so many vines of the block; never less for more vines. */
+  readonly walkSeconds?: (vines: number) => number;
   readonly moneyPerHour?: number;
 }
 
@@ -89,6 +92,8 @@ export interface PlanCounts {
   readonly measures: readonly PlannedMeasure[];
   readonly visits: number;
   readonly hours: number;
+  /** The part of the hours that is spent on foot between vines; 0 where it lies in the time per vine. */
+  readonly walkingHours: number;
   readonly money: number;
   /** Measures that decide the total, the heaviest first. */
   readonly drivers: readonly string[];
@@ -128,9 +133,15 @@ function eligible(zone: PlanZone): number {
   return Math.min(zone.vines, zone.eligibleVines ?? zone.vines);
 }
 
+/** A vine more costs about this much walking where some forty are visited: what zones are weighed with, whatever the plan comes to. */
+function walkPerVine({ walkSeconds }: PlanEffort): number {
+  return walkSeconds ? (walkSeconds(60) - walkSeconds(20)) / 40 : 0;
+}
+
 function sharedZones(question: PlanQuestion, measures: readonly PlanMeasure[]): SharedZone[] {
-  const seconds = question.effort.secondsPerVine + measures.reduce((sum, measure) => sum + measure.secondsPerSample, 0);
-  return question.zones.map((zone) => ({ vines: zone.vines, cost: seconds, minimum: question.minimum ?? ADVISED_MINIMUM, maximum: eligible(zone) }));
+  const { effort } = question;
+  const seconds = effort.secondsPerVine + walkPerVine(effort) + measures.reduce((sum, measure) => sum + measure.secondsPerSample, 0);
+  return question.zones.map((zone) => ({ vines: zone.vines, cost: seconds + (zone.secondsMore ?? 0), minimum: question.minimum ?? ADVISED_MINIMUM, maximum: eligible(zone) }));
 }
 
 function draftEachZone(question: PlanQuestion): Draft {
@@ -191,8 +202,9 @@ function draftBlock(question: PlanQuestion): Draft {
   const { zones, measures, method = 'leastCost' } = question;
   const demands = measures.map((measure) => blockDemand(question, measure));
   const shared = sharedZones(question, measures);
-  // With one measure every sample costs the same, and the cheapest counts are those shared by spread.
-  const byCounts = method === 'leastCost' && measures.length === 1 ? 'spread' : method;
+  // Where every sample costs the same, the cheapest counts for one measure are those shared by spread.
+  const costsAlike = shared.every(({ cost }) => cost === shared[0]!.cost);
+  const byCounts = method === 'leastCost' && measures.length === 1 && costsAlike ? 'spread' : method;
   if (byCounts === 'leastCost') {
     const answer = leastCostForAll(shared, demands);
     const zoneDrivers = zones.map((_, i) => (answer.counts[i]! > Math.min(shared[i]!.minimum!, shared[i]!.maximum!) ? answer.binding : []));
@@ -211,10 +223,13 @@ function draftBlock(question: PlanQuestion): Draft {
 /** Hours, money and the half-widths that the counts will give. */
 function measureUp(question: PlanQuestion, draft: Draft): PlanCounts {
   const { zones, measures, effort } = question;
+  const visits = draft.visits.reduce((sum, n) => sum + n, 0);
+  const walking = effort.walkSeconds?.(visits) ?? 0;
   const planned = zones.map((zone, i): PlannedZone => {
     const counts = draft.counts.map((row) => row[i]!);
     const sampling = measures.reduce((sum, measure, j) => sum + measure.secondsPerSample * counts[j]!, 0);
-    const seconds = (effort.secondsPerZone ?? 0) + effort.secondsPerVine * draft.visits[i]! + sampling;
+    const onFoot = visits > 0 ? (walking * draft.visits[i]!) / visits : 0;
+    const seconds = onFoot + (effort.secondsPerVine + (zone.secondsMore ?? 0)) * draft.visits[i]! + sampling;
     const halfWidths = measures.map((measure, j) => zoneHalfWidth(measure, { zone, i, n: counts[j]! }));
     return { zone: zone.zone, visits: draft.visits[i]!, counts, drivers: draft.zoneDrivers[i]!, halfWidths, hours: seconds / 3600 };
   });
@@ -226,7 +241,7 @@ function measureUp(question: PlanQuestion, draft: Draft): PlanCounts {
     return { code: measure.code, samples, blockHalfWidth, reached: widest <= measure.margin.value * (1 + 1e-9) };
   });
   const money = hours * (effort.moneyPerHour ?? 0) + measures.reduce((sum, measure, j) => sum + (measure.moneyPerSample ?? 0) * inMeasure[j]!.samples, 0);
-  return { zones: planned, measures: inMeasure, visits: draft.visits.reduce((sum, n) => sum + n, 0), hours, money, drivers: draft.drivers };
+  return { zones: planned, measures: inMeasure, visits, hours, walkingHours: walking / 3600, money, drivers: draft.drivers };
 }
 
 function zoneHalfWidth(measure: PlanMeasure, { zone, i, n }: { zone: PlanZone; i: number; n: number }): number {

@@ -1,5 +1,6 @@
 import { finiteTerm, minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
 import { blockSampleSize } from './blockSampleSize.ts';
+import { cheaperCounts } from './cheaperCounts.ts';
 import { leastCostCounts, type LeastCostAnswer, type LeastCostProblem } from './leastCost.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { criticalT, criticalZ } from './quantiles.ts';
@@ -83,6 +84,18 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
     if (strict.every((target, j) => varianceOf(zones, measures[j]!, answer.counts) <= target * (1 + 1e-12))) break;
     targets = strict;
     answer = solve(zones, measures, targets);
+  }
+  if (factor === 't' && answer.reached) {
+    // The rounds stay on the safe side, so a set with a factor of its own may be a few samples cheaper.
+    const used = (counts: readonly number[]) => Math.max(...measures.map((measure) => {
+      const variance = varianceOf(zones, measure, counts);
+      return variance / targetVariance(measure.margin, criticalT(measure.confidence, degreesOfFreedom(zones, measure, counts)));
+    }));
+    const limits = zones.map((zone) => ({ ...zone, sd: 0 }));
+    const costs = zones.map((zone) => zone.cost ?? 1);
+    const counts = cheaperCounts(answer.counts, { costs, minimum: limits.map(minimumOf), maximum: limits.map(maximumOf), used });
+    answer = { ...answer, counts, cost: counts.reduce((sum, n, i) => sum + n * costs[i]!, 0) };
+    targets = measures.map((measure) => targetVariance(measure.margin, criticalT(measure.confidence, degreesOfFreedom(zones, measure, counts))));
   }
   const order = answer.weights.map((weight, j) => ({ weight, code: measures[j]!.code })).sort((a, b) => b.weight - a.weight);
   const overMinimum = answer.counts.some((n, i) => n > minimumOf({ ...zones[i]!, sd: 0 }));

@@ -4,6 +4,7 @@ import { placeCount, sampleSpread, type Spread } from './balance.ts';
 import { type EligibleRule, eligibleVines, type Relaxation } from './eligible.ts';
 import type { Units } from './pivotal.ts';
 import { reserveVines } from './reserve.ts';
+import { ceilGuarded } from './sampleSize.ts';
 import { type DrawMethod, drawMethods } from './targetsMethods.ts';
 
 /**
@@ -28,6 +29,8 @@ export interface DrawRequest {
   readonly placeApartM?: number;
   /** Fewer places than this are reported; default 2. The draw itself is never repeated, which would bend the chances. */
   readonly wantedPlaces?: number;
+  /** Share of each zone's targets, in the order of the draw, that get a reserve; all by default. */
+  readonly reserveShare?: number;
 }
 
 export interface Target {
@@ -67,7 +70,7 @@ export function drawTargets(request: DrawRequest): ZoneDraw[] {
 }
 
 function drawZone(request: DrawRequest, { zone, count, candidates }: { zone: number; count: number; candidates: readonly number[] }): ZoneDraw {
-  const { table, placeApartM = 10, wantedPlaces = 2 } = request;
+  const { table, placeApartM = 10, wantedPlaces = 2, reserveShare = 1 } = request;
   const { vines, relaxed } = eligibleVines({ ...request, candidates }, count);
   const random = seededRandom(request.seed ^ Math.imul(zone, 0x9e3779b1));
   const drawn = Math.min(count, vines.length);
@@ -76,7 +79,7 @@ function drawZone(request: DrawRequest, { zone, count, candidates }: { zone: num
   const sample = drawn === vines.length ? [...vines.keys()] : draw({ table, vines, units, count: drawn }, random);
   const order = shuffled(sample, random);
   const targetVines = order.map((unit) => vines[unit]!);
-  const reserves = reserveVines(table, vines, targetVines);
+  const reserves = reserveVines(table, vines, targetVines).map((reserve, i) => (i < ceilGuarded(reserveShare * targetVines.length) ? reserve : null));
   const places = placeCount({ x: table.x, y: table.y }, targetVines, placeApartM);
   return {
     zone, eligibleCount: vines.length, relaxed, places,

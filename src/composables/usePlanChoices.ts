@@ -9,6 +9,8 @@ export interface PlanEdits {
   adjust: (code: string, facts: Partial<PlannedMeasureChoice>) => void;
   /** Null goes back to the spread that was found. */
   setSpread: (code: string, zone: number, spread: number | null) => void;
+  /** Seconds more at each vine of a zone; 0 or null for none. */
+  setZoneSeconds: (zone: number, seconds: number | null) => void;
   /** All margins by one factor, so that they keep the proportions that were asked for. */
   scaleMargins: (factor: number) => void;
   takeAdvice: (option: ImpracticalOption) => void;
@@ -36,6 +38,10 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     else typed[String(zone)] = spread;
     adjust(code, { spreads: Object.keys(typed).length > 0 ? typed : undefined });
   }
+  function setZoneSeconds(zone: number, seconds: number | null): void {
+    const rest = Object.fromEntries(Object.entries(choices.value.zoneSeconds).filter(([number]) => number !== String(zone)));
+    set({ zoneSeconds: seconds ? { ...rest, [zone]: seconds } : rest });
+  }
   const scaleMargins = (factor: number) => measures((choice) => ({ ...choice, margin: marginOf(choice) * factor }));
   const pool = (one: number, other: number) => (choices.value = choicesJoined(choices.value, one, other));
   const part = (zone: number) => (choices.value = choicesParted(choices.value, zone));
@@ -44,5 +50,5 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));
     if (option.kind === 'poolZones') pool(Number(option.zones[0]), Number(option.zones[1]));
   }
-  return { toggle, adjust, setSpread, scaleMargins, takeAdvice, pool, part, set };
+  return { toggle, adjust, setSpread, setZoneSeconds, scaleMargins, takeAdvice, pool, part, set };
 }

@@ -5,7 +5,7 @@ import type { XY } from '../../shared/geo/coordinates.ts';
 import { layRows } from '../../shared/geo/rowsLayout.ts';
 import { vineTable } from '../../shared/geo/vines.ts';
 import { drawPlan } from '../../shared/sampling/drawPlan.ts';
-import { answerPlan, answerTradeOff } from '../../shared/sampling/plan.ts';
+import { answerPlan, answerTradeOff, secondsAtVine } from '../../shared/sampling/plan.ts';
 
 const [widthM, lengthM, zoneCount] = [400, 250, 5];
 const codes = ['brix', 'ph', 'ta', 'clusterCount', 'clusterWeight', 'berryWeight'];
@@ -22,8 +22,8 @@ export function benchPlan(runs: number): { counts: number; picture: number; draw
     const [answer, counts] = timed(() => answerPlan(basis, choices));
     const [, picture] = timed(() => answerTradeOff(basis, choices, 'brix'));
     const wanted = answer.counts.zones.map(({ visits, counts: samples }, i) => ({ zone: i + 1, visits, counts: samples }));
-    const measures = answer.question.measures.map(({ code, secondsPerSample }) => ({ code, secondsPerSample }));
-    const request = { rows: rows as never, table, zoneOfVine, unusable: new Uint8Array(table.count), nearBorder: new Uint8Array(table.count), gateXY: [0, 0] as XY, wanted, measures, seed: 5 };
+    const measures = answer.question.measures.map(({ code }) => code);
+    const request = { rows: rows as never, table, zoneOfVine, unusable: new Uint8Array(table.count), nearBorder: new Uint8Array(table.count), gateXY: [0, 0] as XY, wanted, measures, secondsAt: secondsAtVine(answer.question), seed: 5 };
     const [, drawAndWalk] = timed(() => drawPlan(request));
     return { counts, picture, drawAndWalk, vines: table.count, visits: answer.counts.visits };
   }));
@@ -39,7 +39,7 @@ function basisOf(zoneOfVine: Uint8Array): PlanBasis {
     const spreads = zones.map((_, i) => ({ kind: defaultSpread.kind, value: defaultSpread.value * (0.8 + i / 10), cautious: defaultSpread.value, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: typicalMean, isMeanAssumed: true }));
     return { code, name: '', unit, decimals, margin, marginKind, confidence: 0.95 as const, secondsPerSample, skewed, measuredIn: where, sampledUnit: 'vine', tradeSource: defaultSpread.source, spreads, pilots: zones.map(() => null) };
   });
-  return { zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', zones, measures, pilot: null, settings: { floorVines: 5, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' } };
+  return { zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', zones, measures, pilot: null, walks: [], isWalkLaid: false, settings: { floorVines: 5, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' } };
 }
 
 function timed<Result>(work: () => Result): [Result, number] {

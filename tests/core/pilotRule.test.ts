@@ -14,7 +14,7 @@ function basis(vines: readonly number[], pilots: readonly (PilotReadings | null)
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: vines.map((count, i) => ({ id: '', number: i + 1, name: '', colour: null, vines: count, eligible: count })),
     measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: vines.map(() => assumed), pilots: [...pilots] }],
-    settings: { floorVines: 2, impracticalSamples: 60, dayHours: 80, costPerHour: 20, currency: 'EUR' },
+    walks: [], isWalkLaid: false, settings: { floorVines: 2, impracticalSamples: 60, dayHours: 80, costPerHour: 20, currency: 'EUR' },
   };
 }
 const choices = (over: object = {}) => planChoices.parse({ measures: [{ code: 'brix' }], afterPilot: true, ...over });

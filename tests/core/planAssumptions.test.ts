@@ -1,10 +1,12 @@
 import { describe, expect, it } from 'vitest';
+import { seededRandom } from '../../shared/analysis/random.ts';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import { handful, planChoices } from '../../shared/contracts/planChoices.ts';
 import { adviseHandful, betweenVines, handfulSeconds, handfulSpread } from '../../shared/sampling/handful.ts';
 import { blockMaths, zoneMaths } from '../../shared/sampling/maths.ts';
 import { pilotReadingsOf } from '../../shared/sampling/pilotReadings.ts';
 import { answerBudget, answerPlan } from '../../shared/sampling/plan.ts';
+import { criticalT } from '../../shared/sampling/quantiles.ts';
 
 const spread = (value: number) => ({ kind: 'sd' as const, value, cautious: value * 1.2, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: 22, isMeanAssumed: true });
 /** Sugar in zones of 900, 600 and 300 vines with spreads 1.1, 0.8, 1.5: the worked example of stratified sampling in allocate.test.ts. */
@@ -13,10 +15,10 @@ function basis(pilots: PlanBasis['measures'][number]['pilots'] = [null, null, nu
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: [900, 600, 300].map((vines, i) => ({ id: '', number: i + 1, name: '', colour: null, vines, eligible: vines })),
     measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [1.1, 0.8, 1.5].map(spread), pilots }],
-    settings: { floorVines: 2, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' },
+    walks: [], isWalkLaid: false, settings: { floorVines: 2, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' },
   };
 }
-const choices = (over: object = {}) => planChoices.parse({ measures: [{ code: 'brix', ...over }] });
+const choices = (over: object = {}, plan: object = {}) => planChoices.parse({ measures: [{ code: 'brix', ...over }], ...plan });
 const visits = (ask: PlanBasis, how = choices()) => answerPlan(ask, how).counts.zones.map((zone) => zone.visits);
 
 describe('a plan after its pilot', () => {
@@ -66,6 +68,73 @@ describe('assumptions that a planner changes', () => {
       const bought = answerBudget(basis(), choices(), { kind, value });
       expect(bought.kind === 'plan' && bought.plan.visits).toBe(plan.counts.visits);
       expect(bought.kind === 'plan' && bought.scale).toBeLessThanOrEqual(1 + 1e-4);
+    }
+  });
+});
+
+/** Cochran 1977 §5.4: ΣW²S²(1/n − 1/N) with t at Satterthwaite's degrees of freedom, over all counts of the worked example that could cost less; ±0.3 at 95 %. */
+function leastCostByHand(costs: readonly number[]): number {
+  const [vines, spreads] = [[900, 600, 300], [1.1, 0.8, 1.5]];
+  let least = Infinity;
+  for (let a = 2; a <= 80; a++)
+    for (let b = 2; b <= 60; b++)
+      for (let c = 2; c <= 40; c++) {
+        const counts = [a, b, c];
+        const cost = counts.reduce((sum, n, i) => sum + n * costs[i]!, 0);
+        if (cost >= least) continue;
+        const parts = counts.map((n, i) => (vines[i]! / 1800) ** 2 * spreads[i]! ** 2 * (1 / n - 1 / vines[i]!));
+        const variance = parts.reduce((sum, part) => sum + part, 0);
+        if (variance > (0.3 / 1.96) ** 2) continue;
+        const df = variance ** 2 / parts.reduce((sum, part, i) => sum + part ** 2 / (counts[i]! - 1), 0);
+        if (criticalT(0.95, df) * Math.sqrt(variance) <= 0.3) least = cost;
+      }
+  return least;
+}
+
+describe('what a vine costs', () => {
+  const block = (over: object = {}) => planChoices.parse({ measures: [{ code: 'brix', margin: 0.3 }], question: 'block', ...over });
+
+  it('takes fewer vines where they cost more, and its counts are the cheapest of all there are', () => {
+    const ask = basis();
+    for (const more of [0, 30, 200, 600]) {
+      const dear = { zoneSeconds: { 3: more } };
+      const found = answerPlan(ask, block({ allocation: 'leastCost', ...dear })).counts;
+      expect(found.hours * 3600).toBeCloseTo(leastCostByHand([75, 75, 75 + more]), 6);
+      expect(found.hours * 3600).toBeCloseTo(found.zones.reduce((sum, { visits: n }, i) => sum + n * [75, 75, 75 + more][i]!, 0), 6);
+    }
+    for (const allocation of ['leastCost', 'spreadAndCost'] as const) expect(visits(ask, block({ allocation, zoneSeconds: { 3: 600 } }))[2]).toBeLessThan(visits(ask, block({ allocation }))[2]!);
+  });
+
+  it('the speed on foot, the slopes and the seconds at a vine change the hours, never the count of a zone', () => {
+    const walked: PlanBasis = { ...basis(), walks: [{ vines: 6, levelS: 600, slopedS: 800 }, { vines: 90, levelS: 3000, slopedS: 4200 }] };
+    const hours = (over: object = {}) => answerPlan(walked, choices({}, over)).counts;
+    const usual = hours();
+    // 3.01 km/h is 0.8361 m/s; the trial walks are at 0.836
+    const onFoot = (slow: number) => hours({ pace: { kmPerHour: 3.0096 / slow, onSlopes: false } }).walkingHours;
+    expect(onFoot(2)).toBeCloseTo(2 * onFoot(1), 9);
+    expect(usual.walkingHours).toBeGreaterThan(onFoot(1) * 1.2);
+    expect(usual.hours).toBeCloseTo(usual.walkingHours + (usual.visits * (15 + 60)) / 3600, 9);
+    expect(hours({ secondsPerVine: 45 }).hours).toBeCloseTo(usual.hours + (usual.visits * 30) / 3600, 9);
+    expect(hours({ pace: { kmPerHour: 1 } }).zones.map((zone) => zone.visits)).toEqual(usual.zones.map((zone) => zone.visits));
+    expect(usual.zones.reduce((sum, zone) => sum + zone.hours, 0)).toBeCloseTo(usual.hours, 9);
+  });
+
+  it('from a margin to its cost and back, from a budget to its margin and back: one plan', () => {
+    const random = seededRandom(31);
+    for (let round = 0; round < 40; round++) {
+      const walked: PlanBasis = { ...basis(), walks: [{ vines: 6, levelS: 200 + 900 * random(), slopedS: 1200 }, { vines: 90, levelS: 2400 + 3000 * random(), slopedS: 6000 }] };
+      const how = choices({ margin: 0.25 + random(), confidence: [0.9, 0.95, 0.98, 0.99][round % 4] }, { question: round % 2 === 0 ? 'eachZone' : 'block', pace: { onSlopes: false, kmPerHour: 1 + 4 * random() } });
+      const plan = answerPlan(walked, how).counts;
+      for (const [kind, spent] of [['hours', plan.hours], ['vines', plan.visits], ['money', plan.money]] as const) {
+        const bought = answerBudget(walked, how, { kind, value: spent });
+        if (bought.kind !== 'plan') throw new Error('a plan buys itself');
+        expect(bought.plan.visits).toBe(plan.visits);
+        expect(bought.scale).toBeLessThanOrEqual(1 + 1e-4);
+        // the margin found, asked for by itself, costs what was given for it
+        const again = answerPlan(walked, { ...how, measures: [{ ...how.measures[0]!, margin: how.measures[0]!.margin! * bought.scale }] }).counts;
+        expect(again.visits).toBe(plan.visits);
+        expect(again.hours).toBeCloseTo(plan.hours, 9);
+      }
     }
   });
 });

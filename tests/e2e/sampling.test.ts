@@ -100,7 +100,7 @@ describe('from a pilot to paper', () => {
     await page.getByRole('button', { name: 'Plan with the pilot' }).click();
     await page.getByText(/^Planned with/).waitFor();
     await page.getByText(/^The pilot, n \d+$/).first().waitFor();
-    await page.getByRole('button', { name: 'Show', exact: true }).first().click();
+    await page.getByRole('button', { name: 'Show: Show me the maths' }).click();
     await page.getByText('n = max(n₁, ⌈n₀ / (1 + n₀ / N)⌉), n₀ = (t · s₁ / E)²').waitFor();
     await page.getByText(/Stein 1945/).waitFor();
   });

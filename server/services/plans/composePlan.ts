@@ -5,9 +5,10 @@ import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 import { drawPlan, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
 import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
-import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
+import { answerPlan, secondsAtVine, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { headOf } from '../../../shared/sampling/pooledZones.ts';
 import { pacedGround } from '../../../shared/sampling/terrain.ts';
+import { walksAsLaid } from '../../../shared/sampling/walkEstimate.ts';
 import { gridOf } from '../../ground/blockVines.ts';
 import { loadTerrain } from '../../ground/terrain.ts';
 import { loadPlanBasis } from './planBasis.ts';
@@ -34,10 +35,15 @@ export async function composePlan(estateId: string, zoningId: string, made: { ch
   const draw = drawPlan({
     rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, ground: pacedGround(choices.pace, terrain),
     wanted: answer.counts.zones.map(({ zone, visits, counts }) => ({ zone: Number(zone), visits, counts })),
-    measures: answer.question.measures.map(({ code, secondsPerSample }) => ({ code, secondsPerSample })),
+    measures: answer.question.measures.map(({ code }) => code),
+    secondsAt: secondsAtVine(answer.question),
+    reserveShare: choices.reserveShare,
     seed: made.seed,
   });
-  return { choices, planGround, basis, answer, draw };
+  // From here on the walk's time is that of the vines drawn, also when somebody looks what other margins would cost.
+  const walks = walksAsLaid(basis.walks, { vines: draw.targets.length, walkingS: draw.walkingS }, choices.pace);
+  const laid = { ...basis, walks, isWalkLaid: walks.length > 0 && draw.targets.length > 0 };
+  return { choices, planGround, basis: laid, answer: answerPlan(laid, choices), draw };
 }
 
 /** Zones as they are sampled: those of a pool are one, and the border between them is none. */

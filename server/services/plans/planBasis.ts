@@ -1,13 +1,16 @@
 import type { Access } from '../../access/access.ts';
 import type { BasisMeasure, PlanBasis } from '../../../shared/contracts/planBasis.ts';
-import type { BasisChoices, SpreadChoices } from '../../../shared/contracts/planChoices.ts';
+import { paceChoices, type BasisChoices, type SpreadChoices } from '../../../shared/contracts/planChoices.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { pilotReadingsOf } from '../../../shared/sampling/pilotReadings.ts';
 import { vintageYear } from '../../../shared/season/seasonAround.ts';
 import { spreadsOf } from '../../../shared/sampling/planBasis.ts';
 import type { HistoryReading } from '../../../shared/sampling/pooling.ts';
+import { pacedGround } from '../../../shared/sampling/terrain.ts';
+import { trialWalks } from '../../../shared/sampling/walkEstimate.ts';
 import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
+import { loadTerrain } from '../../ground/terrain.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { Estate } from '../../models/Estate.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
@@ -18,6 +21,7 @@ import { Target } from '../../models/Target.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
+const usualPace = paceChoices.parse({});
 /** Other blocks are read only where a block's own history is too short to plan with. */
 const enoughOwnReadings = 8;
 const otherBlocksRead = 12;
@@ -42,6 +46,7 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
   const pilot = await latestPilot(estateId, { blockId: ground.block.id, seasonId: season.id });
   const ofPilot = historyOf(zoned.filter(({ roundId }) => roundId !== null && pilot?.roundIds.has(roundId)), ground.block.id, yearOf);
   const isShort = measures.some(({ code }) => (own.get(code)?.length ?? 0) < enoughOwnReadings);
+  const terrain = await loadTerrain(estateId, ground);
   const others = isShort ? await historyOfOtherBlocks(estateId, ground.block.id, yearOf) : new Map<string, HistoryReading[]>();
   const { floorVines, impracticalSamples, dayHours, costPerHour, currency } = estateSettings.parse(estate.settings);
   return {
@@ -61,6 +66,8 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
       how,
     })),
     pilot: pilot === null ? null : { planId: pilot.planId, name: pilot.name, vines: pilot.vines, read: new Set(zoned.filter(({ roundId }) => roundId !== null && pilot.roundIds.has(roundId)).map(({ vineKey }) => vineKey)).size },
+    walks: trialWalks({ rows: ground.rows, table: ground.vines, vines: planGround.drawable, gateXY: planGround.gateXY, ...pacedGround(usualPace, terrain) }),
+    isWalkLaid: false,
     settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency },
   };
 }

@@ -22,6 +22,8 @@ export interface PlanGround {
   /** Null where vines may be drawn up to the borders of zones. */
   nearBorder: Uint8Array | null;
   zones: BasisZone[];
+  /** Vines that may be drawn, row by row: under the rule, or all bearing vines of zones where it leaves too few. */
+  drawable: number[];
   gateXY: XY;
   /** True when the block names no gate, so that walks begin at the start post of its first row. */
   isGateAssumed: boolean;
@@ -40,17 +42,20 @@ export async function loadPlanGround(estateId: string, zoningId: string, draw: D
   const zoneOf = zonesOfVines(ground, zoning);
   const unusable = Uint8Array.from(ground.states, (state) => (state === null || state === 'sick' ? 0 : 1));
   const nearBorder = draw.borderM === 0 ? null : vinesNearBorder({ grid, labels: decodeLabels(zoning.labels) }, { ...ground.vines, zoneOfVine: zoneOf }, draw.borderM ?? undefined);
-  const zones = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ id, number, name: zoneName, colour, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }, number) }));
-  return { zoning, ground, zoneOf, unusable, nearBorder, zones: zones.filter(({ vines }) => vines > 0), ...(await gateOf(estateId, ground)) };
+  const found = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ zone: { id, number, name: zoneName, colour }, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }, number) })).filter(({ bearing }) => bearing > 0);
+  if (found.length === 0) throw new Unusable('noVines', `No zone of ${name} has a vine to sample: all its vines are marked missing, replanted or off-type. Look at the marks of its vines in the block's rows, then plan.`);
+  const zones = found.map(({ zone, bearing, drawable }): BasisZone => ({ ...zone, vines: bearing, eligible: drawable.length }));
+  const drawable = found.flatMap((one) => one.drawable).sort((a, b) => a - b);
+  return { zoning, ground, zoneOf, unusable, nearBorder, zones, drawable, ...(await gateOf(estateId, ground)) };
 }
 
-function vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }: Pick<PlanGround, 'ground' | 'zoneOf' | 'unusable' | 'nearBorder'> & { draw: DrawChoices }, zone: number): { vines: number; eligible: number } {
+function vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }: Pick<PlanGround, 'ground' | 'zoneOf' | 'unusable' | 'nearBorder'> & { draw: DrawChoices }, zone: number): { bearing: number; drawable: number[] } {
   const candidates: number[] = [];
   zoneOf.forEach((of, vine) => of === zone && candidates.push(vine));
-  const vines = candidates.filter((vine) => isBearing(ground.states[vine]!)).length;
-  const strict = eligibleVines({ table: ground.vines, candidates, unusable, rule: draw, ...(nearBorder ? { nearBorder } : {}) }, 0).vines.length;
+  const bearing = candidates.filter((vine) => isBearing(ground.states[vine]!));
+  const strict = eligibleVines({ table: ground.vines, candidates, unusable, rule: draw, ...(nearBorder ? { nearBorder } : {}) }, 0).vines;
   // Rules are relaxed before a draw comes up short, so a narrow zone can still give its bearing vines.
-  return { vines, eligible: strict >= 2 ? strict : vines };
+  return { bearing: bearing.length, drawable: strict.length >= 2 ? [...strict] : bearing };
 }
 
 async function gateOf(estateId: string, ground: BlockVines): Promise<Pick<PlanGround, 'gateXY' | 'isGateAssumed'>> {

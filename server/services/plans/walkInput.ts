@@ -1,7 +1,7 @@
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import { planChoices } from '../../../shared/contracts/planChoices.ts';
 import type { XY } from '../../../shared/geo/coordinates.ts';
-import { questionOf } from '../../../shared/sampling/plan.ts';
+import { questionOf, secondsAtVine } from '../../../shared/sampling/plan.ts';
 import type { Terrain } from '../../../shared/sampling/terrain.ts';
 import { Unusable } from '../../errors.ts';
 import type { ShareInput } from '../../ground/shareRound.ts';
@@ -14,13 +14,12 @@ import { sampledZones } from './standingOfPlan.ts';
 export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readonly Target[], how: { gateXY: XY; people: number; end: 'gate' | 'anywhere'; terrain: Terrain | null }): ShareInput {
   const { basis } = plan.result as { basis: PlanBasis };
   const choices = planChoices.parse(plan.options);
-  const { measures } = questionOf(basis, choices);
-  const seconds = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
+  const secondsAt = secondsAtVine(questionOf(basis, choices));
   const { sampledZoneOf } = sampledZones(plan);
-  const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => ({
-    rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone: sampledZoneOf.get(zoneId) ?? 0,
-    serviceS: measureCodes.reduce((sum, code) => sum + (seconds.get(code) ?? 0), 0),
-  }));
+  const vines = targets.map(({ rowId, ordinal, zoneId, measureCodes }) => {
+    const zone = sampledZoneOf.get(zoneId) ?? 0;
+    return { rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone, serviceS: secondsAt(zone, measureCodes) };
+  });
   if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);
   return { rows: ground.rows, vines, pace: choices.pace, ...how };
 }

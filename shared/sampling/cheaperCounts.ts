@@ -1,0 +1,93 @@
+/**
+ * Counts made cheaper step by step while every limit still holds: a sample or two are taken from a zone, and where that
+ * breaks a limit, samples are given to others, each where it mends most for its cost, as long as the whole stays cheaper;
+ * or one is given to a zone, and others spare what they can.
+ * For limits that move with the counts (Student's t), which the least-cost programme can only hold fixed. Own rule;
+ * against every set of counts: tests/core/planAssumptions.test.ts.
+ */
+export interface CheaperAsk {
+  readonly costs: readonly number[];
+  readonly minimum: readonly number[];
+  readonly maximum: readonly number[];
+  /** Share of its limit that the tightest margin uses: at most 1 where all are kept. */
+  readonly used: (counts: readonly number[]) => number;
+}
+
+/** Roundings of equal counts are not worth a step. */
+const WORTH = 1 - 1e-9;
+const KEPT = 1 + 1e-12;
+const MOST_STEPS = 400;
+
+export function cheaperCounts(start: readonly number[], ask: CheaperAsk): number[] {
+  let counts = [...start];
+  for (let step = 0; step < MOST_STEPS; step++) {
+    const better = cheaperNeighbour(counts, ask);
+    if (better === null) break;
+    counts = better;
+  }
+  return counts;
+}
+
+function cheaperNeighbour(counts: readonly number[], ask: CheaperAsk): number[] | null {
+  const { costs, minimum } = ask;
+  const dearestFirst = costs.map((_, i) => i).sort((a, b) => costs[b]! - costs[a]!);
+  const cost = costOf(costs, counts);
+  for (const fewer of [1, 2, 3])
+    for (const zone of dearestFirst) {
+      if (counts[zone]! - fewer < minimum[zone]!) continue;
+      const changed = counts.map((n, i) => (i === zone ? n - fewer : n));
+      const mended = mendedBelow(changed, { ...ask, apart: zone, below: cost * WORTH });
+      if (mended !== null) return mended;
+    }
+  for (const zone of dearestFirst) {
+    if (counts[zone]! >= ask.maximum[zone]!) continue;
+    const spared = sparedAround(counts.map((n, i) => (i === zone ? n + 1 : n)), { ...ask, apart: zone });
+    if (costOf(costs, spared) < cost * WORTH) return spared;
+  }
+  return null;
+}
+
+/** Samples taken away outside zone `apart` while the limits hold, each where it is missed least for its cost. */
+function sparedAround(counts: number[], { costs, minimum, used, apart }: CheaperAsk & { apart: number }): number[] {
+  for (;;) {
+    let best = -1;
+    let bestLoss = Infinity;
+    const now = used(counts);
+    counts.forEach((n, i) => {
+      if (i === apart || n <= minimum[i]!) return;
+      counts[i] = n - 1;
+      const after = used(counts);
+      counts[i] = n;
+      if (after <= KEPT && (after - now) / costs[i]! < bestLoss) [best, bestLoss] = [i, (after - now) / costs[i]!];
+    });
+    if (best < 0) return counts;
+    counts[best]! -= 1;
+  }
+}
+
+/** Samples added outside zone `apart` until the limits hold; null when that costs too much. */
+function mendedBelow(counts: number[], ask: CheaperAsk & { apart: number; below: number }): number[] | null {
+  const { costs, maximum, used, apart, below } = ask;
+  let now = used(counts);
+  while (!(now <= KEPT)) {
+    let best = -1;
+    let bestGain = 0;
+    let bestUsed = now;
+    counts.forEach((n, i) => {
+      if (i === apart || n >= maximum[i]! || costOf(costs, counts) + costs[i]! >= below) return;
+      counts[i] = n + 1;
+      const after = used(counts);
+      counts[i] = n;
+      const gain = (now - after) / costs[i]!;
+      if (gain > bestGain) [best, bestGain, bestUsed] = [i, gain, after];
+    });
+    if (best < 0) return null;
+    counts[best]! += 1;
+    now = bestUsed;
+  }
+  return costOf(costs, counts) < below ? counts : null;
+}
+
+function costOf(costs: readonly number[], counts: readonly number[]): number {
+  return costs.reduce((sum, cost, i) => sum + cost * counts[i]!, 0);
+}

@@ -52,7 +52,7 @@ export const permissions = {
   'notices.send': { owner: 'do', manager: 'do', winemaker: 'do' },
   'notices.acknowledge': everybody,
   'tickets.enter': { owner: 'do', admin: 'do', manager: 'do', winemaker: 'do' },
-  'factors.switch': { owner: 'do', agronomist: 'propose', winemaker: 'do' },
+  'factors.switch': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do' },
   'review.see': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', guest: 'read' },
   'exports.make': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', crew: 'own', lab: 'own', guest: 'propose' },
   'names.see': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'read', crew: 'own', lab: 'own' },

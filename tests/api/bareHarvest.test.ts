@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeLabels, encodeCells } from '../../shared/analysis/cellBytes.ts';
 import { Reading } from '../../server/models/Reading.ts';
+import { Season } from '../../server/models/Season.ts';
 import { Zone } from '../../server/models/Zone.ts';
 import { Zoning } from '../../server/models/Zoning.ts';
 import type { LotsBoard } from '../../shared/contracts/lots.ts';
@@ -120,6 +121,34 @@ describe('a forecast in the review', () => {
     expect(zones.map(({ blockName, forecastOn }) => [blockName, forecastOn])).toEqual([['Red Plot', '2026-07-21']]);
     expect(byDate).toMatchObject([{ forecastOn: '2026-07-21', n: 1, few: true }]);
     expectNumbers([zones[0]!.actualT, zones[0]!.forecast.halfWidth, summary.bias]);
+  });
+
+  it('of a lot without a notice is what was known at its first load, with the vines of that day', async () => {
+    const review = async () => (await owner.get(`${base()}/review`)).body as ReviewView;
+    const before = await review();
+    expect(before.lots[0]).toMatchObject({ lotName: 'Mixed', forecastFrom: 'known', forecastOn: '2026-09-18' });
+    // Marks made long after the load change the vines of today, and the part of them in the error, not the forecast.
+    const gone = [...red.zoneOf.keys()].filter((vine) => red.zoneOf[vine] === 1).slice(0, 40);
+    const marks = gone.map((vine) => ({ rowId: red.ground.stored[red.ground.vines.row[vine]!]!.id, ordinal: red.ground.vines.ordinal[vine], state: 'missing' }));
+    expect((await owner.write('put', `${base()}/blocks/${red.blockId}/vines`).send({ marks, complete: false })).status).toBeLessThan(300);
+    const after = await review();
+    expect(after.zones.map(({ forecast }) => forecast.value)).toEqual(before.zones.map(({ forecast }) => forecast.value));
+    expect(after.errorParts.find(({ part }) => part === 'vines')!.tonnes).toBeLessThan(0);
+    expect(before.errorParts.some(({ part }) => part === 'vines')).toBe(false);
+  });
+
+  it('gives growth its part of the error where clusters were weighed at lag phase and again when ripe', async () => {
+    await Season.query().where({ estateId: estate.estateId }).patch({ phases: { veraison: ['2026-08-01', '2026-08-20'] } } as never);
+    const weights = { measureCode: 'clusterWeight', unit: 'g' };
+    await read(red, 1, [60, 62, 58, 60], { ...weights, day: '2026-07-20' });
+    await Reading.query().where({ measureCode: 'clusterWeight' }).patch({ receivedAt: new Date('2026-07-21T11:00:00Z') });
+    await read(red, 1, [132, 130, 134, 132], { ...weights, day: '2026-09-20' });
+    const { zones: [zone], errorParts } = (await owner.get(`${base()}/review`)).body as ReviewView;
+    // 60 g grew to 132 g, by 2.2 where 2 was assumed; its share by the logarithmic mean of forecast and weight.
+    const mean = (zone!.actualT - zone!.forecast.value) / Math.log(zone!.actualT / zone!.forecast.value);
+    expect(errorParts.find(({ part }) => part === 'growth')!.tonnes).toBeCloseTo(mean * Math.log(1.1), 6);
+    expect(errorParts.some(({ part }) => part === 'clusterWeight')).toBe(false);
+    expect(errorParts.reduce((sum, { tonnes }) => sum + tonnes, 0)).toBeCloseTo(zone!.actualT - zone!.forecast.value, 6);
   });
 });
 

@@ -65,7 +65,7 @@ describe('results by zone', () => {
 });
 
 describe('a pick lot', () => {
-  it('ties zones of two blocks and adds up area, tonnes, sugar and alcohol', async () => {
+  it('ties zones of two blocks and adds up area, tonnes and sugar', async () => {
     const lotId = await newLot('Shelf red');
     expect((await setParts(lotId, 1, [{ zoneId: one.zoneIds[0] }, { zoneId: two.zoneIds[1] }])).status).toBe(204);
     const { lots, zones } = await board();
@@ -74,13 +74,26 @@ describe('a pick lot', () => {
     expect(lot.lines.map((line) => line.share)).toEqual([1, 1]);
     expect(lot.summary.areaHa).toBeCloseTo(a.areaHa + b.areaHa, 6);
     expect(lot.summary.tonnes!.value).toBeCloseTo(a.tonnes.value + b.tonnes.value, 6);
+    // Nobody has counted or weighed clusters: tonnes are assumed, so zones weigh by their area, and that is said.
+    expect(lot.summary.weighting).toBe('area');
+    expect(lot.summary.brix!.value).toBeCloseTo((22.62 * a.areaHa + (72.2 / 3) * b.areaHa) / (a.areaHa + b.areaHa), 6);
+    expect(lot.summary.unknown.map((entry) => entry.measure)).toEqual(['ph', 'ta']);
+    expect(a.freeShare).toBe(0);
+  });
+
+  it('weighs its zones by tonnes once clusters are counted in all of them', async () => {
+    const lotOf = async () => (await board()).lots.find(({ name }) => name === 'Shelf red')!;
+    await read(one, 1, [30, 34, 26, 31], 'clusterCount', 'clusters');
+    expect((await lotOf()).summary.weighting).toBe('area');
+    await read(two, 2, [12, 15, 11, 14], 'clusterCount', 'clusters');
+    const lot = await lotOf();
+    const { zones } = await board();
+    const [a, b] = [zones.find((zone) => zone.zoneId === one.zoneIds[0])!, zones.find((zone) => zone.zoneId === two.zoneIds[1])!];
     const weighted = (22.62 * a.tonnes.value + (72.2 / 3) * b.tonnes.value) / (a.tonnes.value + b.tonnes.value);
     expect(lot.summary.brix!.value).toBeCloseTo(weighted, 6);
     expect(lot.summary.weighting).toBe('tonnes');
     expect(lot.summary.alcohol!.middle).toBeCloseTo(0.59 * weighted, 6);
     expect(lot.summary.alcohol!.low).toBeLessThan(lot.summary.alcohol!.middle);
-    expect(lot.summary.unknown.map((entry) => entry.measure)).toEqual(['ph', 'ta']);
-    expect(a.freeShare).toBe(0);
   });
 
   it('takes no vine that another lot has, and names that lot', async () => {

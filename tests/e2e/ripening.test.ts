@@ -26,6 +26,8 @@ describe('from results to the season’s review', () => {
     const { page, context, estateId } = await app.signIn('winemaker');
     await page.goto(`${app.url}/e/${estateId}/ripeness`);
     await page.getByRole('heading', { name: 'How many more' }).waitFor({ timeout: 60_000 });
+    await page.getByLabel('Way on this screen').selectOption({ label: 'sugar by the OIV table, ÷ 16.83' });
+    await page.getByText(/Potential alcohol: sugar of must by the OIV table.*not the alcohol of a label/).waitFor();
     await page.getByText('mm of rain in three days').first().waitFor();
     await page.getByText(/degree days above 10 °C/).waitFor();
     await page.getByLabel('Your target').fill('26');
@@ -105,6 +107,13 @@ describe('from results to the season’s review', () => {
     await stop.first().waitFor();
     await page.getByText(/A pre-harvest interval is not lifted by wish; Hester Vane or Tessa Brand may put the day right/).first().waitFor();
     await expectAccessible(page);
+    await page.getByLabel('As known on').fill(new Date(Date.now() - 4 * 86_400_000).toISOString().slice(0, 10));
+    await page.getByText(/^As it stood and was known on/).waitFor();
+    await expect.poll(() => page.getByRole('button', { name: 'Set the room' }).count()).toBe(0);
+    expect(await page.getByText(/may put the day right/).count()).toBe(0);
+    await expectAccessible(page);
+    await page.getByRole('button', { name: 'Show today' }).click();
+    await page.getByRole('button', { name: 'Set the room' }).waitFor();
     await context.close();
   });
 

@@ -62,12 +62,17 @@ export function summariseLot(shares: LotShare[], how: { wineType: WineType; tank
 function valueOf<Value extends Estimate>(shares: LotShare[], code: MeasuredCode, combine: (parts: LotPart[]) => Value): { value: Value; n: number } | null {
   const known = shares.filter((share) => share.share > 0 && isKnown(share, code));
   if (known.length === 0) return null;
-  const parts = known.map((share): LotPart => ({ zone: share.zone.id, areaHa: (share.share * share.zone.areaM2) / 10_000, tonnes: tonnesOf(share), value: share.outlook.latest[code]!.estimate }));
+  const parts = known.map((share): LotPart => ({ zone: share.zone.id, areaHa: (share.share * share.zone.areaM2) / 10_000, tonnes: isCounted(share) ? tonnesOf(share) : null, value: share.outlook.latest[code]!.estimate }));
   return { value: combine(parts), n: sum(known, (share) => share.outlook.latest[code]!.n) };
 }
 
 function isKnown({ outlook }: LotShare, code: MeasuredCode): boolean {
   return outlook.latest[code] !== null && Number.isFinite(outlook.latest[code].estimate.standardError);
+}
+
+/** Its clusters were counted or weighed. Tonnes from usual figures alone say no more than its area does. */
+function isCounted({ outlook }: LotShare): boolean {
+  return outlook.parts.some(({ part, kind }) => (part === 'clusters' || part === 'clusterWeight') && kind === 'measured');
 }
 
 function tonnesOf({ outlook, share }: LotShare): Dependent {

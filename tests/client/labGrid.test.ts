@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import LabGrid from '../../src/components/lab/LabGrid.vue';
+import LabTyping from '../../src/components/lab/LabTyping.vue';
 import { figuresOf, idsNeeded, noSetup, pastedBlock } from '../../src/components/lab/labDraft.ts';
 import type { BagLine } from '../../shared/contracts/bags.ts';
 import type { LabMeasureView, LabResult } from '../../shared/contracts/lab.ts';
@@ -53,5 +54,19 @@ describe('the grid by keyboard', () => {
     await grid.find('input[data-at="0-0"]').trigger('paste', { clipboardData: { getData: () => '23,4\t3,41\n22,1\t3,38\n21\t3,3' } });
     expect(grid.emitted('type')![0]).toEqual([{ [`${labelCode(1)} brix`]: '23,4', [`${labelCode(1)} ph`]: '3,41', [`${labelCode(2)} brix`]: '22,1', [`${labelCode(2)} ph`]: '3,38' }]);
     grid.unmount();
+  });
+
+  it('that may not store yet leads to what is lacking instead of keeping silent', async () => {
+    const bench = { measures: [measure('brix', '°Brix')], bags: [{ ...bag(1), id: 'bag' }], results: [stored('21', 'checked')], groups: [] };
+    const typing = await mountWithTexts(LabTyping, { props: { bench, readOnly: false, busy: false, outcomes: [], draft: { [`${labelCode(1)} brix`]: { text: '22', ids: ['a'] } }, setup: {} } as never });
+    const press = () => typing.find('input[data-at="0-0"]').trigger('keydown', { key: 'Enter', ctrlKey: true });
+    await press();
+    expect(typing.emitted('store')).toBeUndefined();
+    const reason = typing.find('.foot input');
+    expect(document.activeElement).toBe(reason.element);
+    await reason.setValue('Misread the scale');
+    await press();
+    expect(typing.emitted('store')).toHaveLength(1);
+    typing.unmount();
   });
 });

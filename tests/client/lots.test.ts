@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { Figure, LotSummary, LotView, LotZone } from '../../shared/contracts/lots.ts';
-import { chanceText, figureText, tankLoads } from '../../src/components/lots/lotFigures.ts';
+import { chanceText, figureText, tankChance, tankLoads } from '../../src/components/lots/lotFigures.ts';
 import { freeRows, rowsBetween, withoutZone, withZone } from '../../src/components/lots/lotParts.ts';
 import { createFormat } from '../../src/lib/format.ts';
 
@@ -50,6 +50,17 @@ describe('tanks', () => {
   it('add up lots that share a tank, errors in squares', () => {
     const [load] = tankLoads([tank], [lot([], figure(4000, 300), 't4'), lot([], figure(5000, 400), 't4')]);
     expect(load!.must).toEqual({ value: 9000, low: 8500, high: 9500 });
+  });
+
+  it('of several lots are told with all that goes into them, and of one lot as it was reckoned for it', () => {
+    const inTank = (id: string, mustL: Figure, chanceOfFit: number) => ({ id, name: id, tankId: 't4', lines: [], summary: { mustL, tank: { tankId: 't4', name: 'T4', workingL: 9600, chanceOfFit, chanceBelowMinimum: 0 } } }) as unknown as LotView;
+    const [a, b] = [inTank('a', figure(4000, 300), 1), inTank('b', figure(5000, 400), 0.99)];
+    expect(tankChance(a, [tank], [a])).toEqual({ chance: 1, tank: 'T4', others: [] });
+    expect(tankLoads([tank], [b])[0]!.fit!.chanceOfFit).toBe(0.99);
+    // Normal distribution: P(X < 9600) with mean 9000 and sd 500 / 1.959964 is 0.99066 (scipy 1.10.1, norm.cdf).
+    const together = tankChance(b, [tank], [a, b])!;
+    expect(together).toMatchObject({ tank: 'T4', others: ['a'] });
+    expect(together.chance).toBeCloseTo(0.99066, 5);
   });
 
   it('are empty without a lot', () => {

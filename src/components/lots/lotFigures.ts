@@ -54,7 +54,24 @@ export function tankLoads(tanks: readonly TankView[], lots: readonly LotView[]):
     if (inside.length === 0) return { tank, lots: [], must: null, fit: null, sum: null };
     const sum = sumFigures(inside.map((lot) => ({ factor: 1, figure: lot.summary.mustL! })));
     const { value, halfWidth: half } = sum;
-    const fit = fitTank({ value, standardError: sum.standardError, df: Infinity }, { volumeL: tank.litres, fillShare: tank.workingFill, minimumL: tank.litres * tank.minimumFill });
+    // Of a lot by itself the server knows how few readings stand behind its litres.
+    const told = inside.length === 1 && inside[0]!.summary.tank ? inside[0]!.summary.tank : {};
+    const fit = { ...fitTank({ value, standardError: sum.standardError, df: Infinity }, { volumeL: tank.litres, fillShare: tank.workingFill, minimumL: tank.litres * tank.minimumFill }), ...told };
     return { tank, lots: inside, must: { value, low: Math.max(0, value - half), high: value + half }, fit, sum };
   });
+}
+
+export interface TankChance {
+  readonly chance: number;
+  readonly tank: string;
+  /** Names of lots that go into the same tank. */
+  readonly others: readonly string[];
+}
+
+/** The chance that a lot fits its tank together with whatever else goes into it; null without a tank or must. */
+export function tankChance(lot: LotView, tanks: readonly TankView[], lots: readonly LotView[]): TankChance | null {
+  if (lot.summary.tank === null) return null;
+  const load = tankLoads(tanks, lots).find(({ tank }) => tank.id === lot.tankId);
+  const others = load?.lots.filter(({ id }) => id !== lot.id).map(({ name }) => name) ?? [];
+  return { chance: others.length > 0 ? load!.fit!.chanceOfFit : lot.summary.tank.chanceOfFit, tank: lot.summary.tank.name, others };
 }

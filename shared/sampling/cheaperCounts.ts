@@ -9,13 +9,14 @@ export interface CheaperAsk {
   readonly costs: readonly number[];
   readonly minimum: readonly number[];
   readonly maximum: readonly number[];
-  /** Share of its limit that the tightest margin uses: at most 1 where all are kept. */
+  /** About what share of its limit the tightest margin uses; only says where a sample is missed least, so it may be rough and must be quick. */
   readonly used: (counts: readonly number[]) => number;
+  /** Whether every limit holds. */
+  readonly keeps: (counts: readonly number[]) => boolean;
 }
 
 /** Roundings of equal counts are not worth a step. */
 const WORTH = 1 - 1e-9;
-const KEPT = 1 + 1e-12;
 const MOST_STEPS = 400;
 
 export function cheaperCounts(start: readonly number[], ask: CheaperAsk): number[] {
@@ -48,42 +49,35 @@ function cheaperNeighbour(counts: readonly number[], ask: CheaperAsk): number[] 
 }
 
 /** Samples taken away outside zone `apart` while the limits hold, each where it is missed least for its cost. */
-function sparedAround(counts: number[], { costs, minimum, used, apart }: CheaperAsk & { apart: number }): number[] {
+function sparedAround(counts: number[], { costs, minimum, used, keeps, apart }: CheaperAsk & { apart: number }): number[] {
+  const without = (zone: number) => counts.map((n, i) => (i === zone ? n - 1 : n));
   for (;;) {
-    let best = -1;
-    let bestLoss = Infinity;
     const now = used(counts);
-    counts.forEach((n, i) => {
-      if (i === apart || n <= minimum[i]!) return;
-      counts[i] = n - 1;
-      const after = used(counts);
-      counts[i] = n;
-      if (after <= KEPT && (after - now) / costs[i]! < bestLoss) [best, bestLoss] = [i, (after - now) / costs[i]!];
-    });
-    if (best < 0) return counts;
-    counts[best]! -= 1;
+    const open = costs.map((_, i) => i).filter((i) => i !== apart && counts[i]! > minimum[i]!);
+    const losses = new Map(open.map((i) => [i, (used(without(i)) - now) / costs[i]!]));
+    const next = open.sort((a, b) => losses.get(a)! - losses.get(b)!).find((i) => keeps(without(i)));
+    if (next === undefined) return counts;
+    counts[next]! -= 1;
   }
 }
 
 /** Samples added outside zone `apart` until the limits hold; null when that costs too much. */
 function mendedBelow(counts: number[], ask: CheaperAsk & { apart: number; below: number }): number[] | null {
-  const { costs, maximum, used, apart, below } = ask;
-  let now = used(counts);
-  while (!(now <= KEPT)) {
+  const { costs, maximum, used, keeps, apart, below } = ask;
+  while (!keeps(counts)) {
+    const now = used(counts);
     let best = -1;
     let bestGain = 0;
-    let bestUsed = now;
     counts.forEach((n, i) => {
       if (i === apart || n >= maximum[i]! || costOf(costs, counts) + costs[i]! >= below) return;
       counts[i] = n + 1;
       const after = used(counts);
       counts[i] = n;
       const gain = (now - after) / costs[i]!;
-      if (gain > bestGain) [best, bestGain, bestUsed] = [i, gain, after];
+      if (gain > bestGain) [best, bestGain] = [i, gain];
     });
     if (best < 0) return null;
     counts[best]! += 1;
-    now = bestUsed;
   }
   return costOf(costs, counts) < below ? counts : null;
 }

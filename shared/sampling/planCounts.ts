@@ -3,7 +3,7 @@ import { allocationMethods, type AllocationMethodId } from './allocationMethods.
 import { blockPrecision, blockSampleSize } from './blockSampleSize.ts';
 import { matchMargin, type Margin, type MatchedMargin, type Spread } from './margins.ts';
 import { ADVISED_MINIMUM, halfWidth, steinSampleSize } from './sampleSize.ts';
-import { everyZoneCounts, leastCostForAll, spreadOf, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
+import { everyZoneCounts, leastCostForAll, leastCostForOne, spreadOf, trimToVisited, type MeasureDemand, type SharedZone } from './severalMeasures.ts';
 
 /**
  * Counts, hours and precision of a whole plan: several zones, several measures, one walk.
@@ -204,7 +204,13 @@ function draftBlock(question: PlanQuestion): Draft {
   const shared = sharedZones(question, measures);
   // Where every sample costs the same, the cheapest counts for one measure are those shared by spread.
   const costsAlike = shared.every(({ cost }) => cost === shared[0]!.cost);
-  const byCounts = method === 'leastCost' && measures.length === 1 && costsAlike ? 'spread' : method;
+  const isAlone = method === 'leastCost' && measures.length === 1;
+  const byCounts = isAlone && costsAlike ? 'spread' : method;
+  if (isAlone && !costsAlike) {
+    const { counts, atMinimum } = leastCostForOne(shared, demands[0]!);
+    const drivers = atMinimum ? [] : [measures[0]!.code];
+    return { visits: counts, counts: [counts], zoneDrivers: zones.map(() => drivers), drivers };
+  }
   if (byCounts === 'leastCost') {
     const answer = leastCostForAll(shared, demands);
     const zoneDrivers = zones.map((_, i) => (answer.counts[i]! > Math.min(shared[i]!.minimum!, shared[i]!.maximum!) ? answer.binding : []));

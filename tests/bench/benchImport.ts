@@ -9,6 +9,7 @@ import { mkdtempSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { basename, join } from 'node:path';
 import { pixelsBesideGdal } from './pixelsBesideGdal.ts';
+import { measuredRun, readByGdal, type Run } from './readByGdal.ts';
 import { geoTiffBytes } from '../../server/exporters/geoTiffBytes.ts';
 
 export interface ImportBenchOptions {
@@ -50,32 +51,14 @@ function generated(folder: string): { name: string; path: string }[] {
   });
 }
 
-interface Run {
-  seconds: number;
-  /** Resident set before the first byte of the picture was read, and the highest after. */
-  baseMb: number;
-  peakMb: number;
-}
-
-const gdalScript = `
-import sys, json, time
-from osgeo import gdal
-gdal.UseExceptions()
-gdal.SetConfigOption('GDAL_NUM_THREADS', '1')
-mark = lambda: next(int(line.split()[1]) for line in open('/proc/self/status') if line.startswith('VmHWM')) / 1024
-base, start = mark(), time.perf_counter()
-gdal.Open(sys.argv[1]).ReadAsArray()
-print(json.dumps({'seconds': time.perf_counter() - start, 'baseMb': base, 'peakMb': mark()}))
-`;
-
 async function row(name: string, path: string, { runs, cellSizeM }: ImportBenchOptions): Promise<unknown> {
   const [own, gdal]: [Run[], Run[]] = [[], []];
   const picture = basename(name);
   for (let run = 0; run < runs; run++) {
-    const read = measured(process.execPath, ['--import', 'tsx', join(import.meta.dirname, 'readOnePicture.ts'), path, String(cellSizeM)]);
+    const read = measuredRun(process.execPath, ['--import', 'tsx', join(import.meta.dirname, 'readOnePicture.ts'), path, String(cellSizeM)]);
     if (typeof read === 'string') return { picture, refused: read, pixels: await pixelsBesideGdal(path) };
     own.push(read);
-    const beside = measured('/usr/bin/python3', ['-c', gdalScript, path]);
+    const beside = readByGdal(path);
     if (typeof beside !== 'string') gdal.push(beside);
   }
   const of = (list: readonly Run[], part: (run: Run) => number) => (list.length === 0 ? null : median(list.map(part)));
@@ -85,12 +68,6 @@ async function row(name: string, path: string, { runs, cellSizeM }: ImportBenchO
     peakMb: of(own, (run) => run.peakMb), overBaseMb: of(own, (run) => run.peakMb - run.baseMb), gdalPeakMb: of(gdal, (run) => run.peakMb),
     pixels: await pixelsBesideGdal(path),
   };
-}
-
-/** What a process measured of itself; its complaint when it fails. */
-function measured(command: string, args: readonly string[]): Run | string {
-  const { status, stdout, stderr } = spawnSync(command, [...args], { encoding: 'utf8' });
-  return status === 0 ? (JSON.parse(stdout) as Run) : (/(?:Error|Problem): (.*)/.exec(stderr)?.[1] ?? 'it failed');
 }
 
 function median(values: readonly number[]): number {

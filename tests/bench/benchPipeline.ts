@@ -1,6 +1,7 @@
 /**
  * Seconds and memory of the whole zoning program, cold start included, on generated files or on a folder of given ones; beside
- * it, when commands are given, the same files through other programs, runs interleaved, as ratios of medians. Memory of all is
+ * it, when commands are given, the same files through other programs, runs interleaved, as ratios of medians; and, where
+ * python3 has GDAL, the seconds in which that decodes the largest picture, which nothing that reads it can beat. Memory is
  * the highest resident set that the system notes of their process. Zones are checked for gaps and overlaps the same way.
  */
 
@@ -15,6 +16,7 @@ import { fromUtm } from '../../shared/geo/utm.ts';
 import { booleanPointInPolygon } from '@turf/turf';
 import type { FeatureCollection, MultiPolygon } from 'geojson';
 import { groundFit } from './groundFit.ts';
+import { readByGdal } from './readByGdal.ts';
 import type { SimulatedBlock } from './simulatedBlock.ts';
 import { writeCase, type FileCase } from './simulatedFiles.ts';
 
@@ -61,11 +63,15 @@ export async function benchPipeline(options: PipelineOptions): Promise<unknown[]
 
 async function measureFolder(name: string, folder: string, { runs, cellSizeM, against }: PipelineOptions) {
   const out = mkdtempSync(join(tmpdir(), 'zoning-out-'));
+  const picture = pictureIn(folder);
+  const floors: number[] = [];
   const ours: Measured[] = [];
   const others = against.map((template) => ({ template, runs: [] as Measured[], out: mkdtempSync(join(tmpdir(), 'zoning-other-')) }));
   await runZone(folder, out, cellSizeM);
   for (let run = 0; run < runs; run++) {
     ours.push(await runZone(folder, out, cellSizeM));
+    const floor = picture === undefined ? 'no picture' : readByGdal(picture);
+    if (typeof floor !== 'string') floors.push(floor.seconds);
     for (const other of others) other.runs.push(await runOther(other.template, { data: folder, out: other.out, cell: String(cellSizeM) }));
   }
   const block = readJson<Zones>(join(folder, 'block.geojson'));
@@ -87,6 +93,7 @@ async function measureFolder(name: string, folder: string, { runs, cellSizeM, ag
     ...groundFit(block, zones),
     secondsPerStage: report.secondsPerStage,
     shareOfReadingLayers: decoding / Object.values(report.secondsPerStage).reduce((sum, seconds) => sum + seconds, 0),
+    ...(floors.length === 0 ? {} : { gdalDecodesInSeconds: median(floors), timesGdalDecoding: wallSeconds / median(floors) }),
     verdict: (report.verdict as { verdict: string }).verdict,
     zonesAdvised: report.zonesAdvised,
     zones,
@@ -94,10 +101,12 @@ async function measureFolder(name: string, folder: string, { runs, cellSizeM, ag
   };
 }
 
+const pictureIn = (folder: string) => ['vigour.tif', 'vigour_rednir.tif'].map((name) => join(folder, name)).find(existsSync);
+
 function runZone(folder: string, out: string, cellSizeM: number): Promise<Measured> {
   const given = (names: readonly string[]) => names.map((name) => join(folder, name)).find(existsSync);
   const layers = [
-    ['ndvi', given(['vigour.tif', 'vigour_rednir.tif']), '#red=1,nir=2'],
+    ['ndvi', pictureIn(folder), '#red=1,nir=2'],
     ['conductivity', given(['ec.csv']), '#value=ec_deep_mS_m'],
     ['elevation', given(['dem.tif']), ''],
     ['soil', given(['soil.geojson', 'soil.zip']), '#field=AWC_MM'],

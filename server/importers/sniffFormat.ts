@@ -65,7 +65,7 @@ function sniffText(first: Uint8Array, name: string): Sniffed {
   if (first[0] === 0xff && first[1] === 0xfe && first[2] === 0 && first[3] === 0) return { format: 'foreign', foreignName: 'a text in UTF-32 letters; save it as UTF-8' };
   const wide = (first[0] === 0xff && first[1] === 0xfe) || (first[0] === 0xfe && first[1] === 0xff) || first.subarray(0, 200).filter((byte) => byte === 0).length > Math.min(first.length, 200) / 3;
   const text = (wide ? String.fromCharCode(...first.filter((byte) => byte !== 0 && byte < 0xfe)) : new TextDecoder().decode(first)).replace(/^\uFEFF/, '').trimStart();
-  if (!wide && /\.(tiff?|zip|kmz|gpkg|shp)$/i.test(name) && hasStrangeBytes(text.slice(0, 500))) return { format: 'foreign', foreignName: 'a file whose beginning is damaged, or of another kind than its name says' };
+  if (/\.(tiff?|zip|kmz|gpkg|shp)$/i.test(name) && hasControls(first.subarray(0, 500))) return { format: 'foreign', foreignName: 'a file whose beginning is damaged, or of another kind than its name says' };
   if (!wide && isBinary(first.subarray(0, 2000))) return { format: 'foreign', foreignName: 'a binary file of an unknown kind' };
   const other = foreignTexts.find(([beginning]) => beginning.test(text));
   if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
@@ -77,9 +77,9 @@ function sniffText(first: Uint8Array, name: string): Sniffed {
   return /\.(csv|tsv|txt|tab|asc|xyz)$/i.test(name) || /[,;\t|]/.test(text.split(/\r?\n/)[0] ?? '') ? found('table') : { format: 'foreign', foreignName: 'a text of an unknown kind' };
 }
 
-/** What no text has: a control character that is no white space, or bytes that are no letters. */
-function hasStrangeBytes(text: string): boolean {
-  return [...text].some((letter) => letter < '\t' || letter === '\ufffd');
+/** Control characters that are no white space, of which no text has any. */
+function hasControls(bytes: Uint8Array): boolean {
+  return bytes.some((byte) => byte < 9 || (byte > 13 && byte < 32));
 }
 
 /** A zero, or more control characters than any text has. */

@@ -31,9 +31,13 @@ export function undoDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow,
         : new Uint32Array(bytes.buffer, bytes.byteOffset, count);
   for (let row = 0; row < count; row += samplesPerRow) {
     const end = Math.min(count, row + samplesPerRow);
-    if (stride === 2) addPairs(samples, row, end);
-    else for (let band = 0; band < stride; band++) addUp(samples, row + band, { end, stride });
+    addDifferences(samples, row, { end, stride });
   }
+}
+
+function addDifferences(samples: Wrapping, from: number, { end, stride }: { end: number; stride: number }): void {
+  if (stride === 2) addPairs(samples, from, end);
+  else for (let band = 0; band < stride; band++) addUp(samples, from + band, { end, stride });
 }
 
 /** Running sums wrap at 32 bits, whose lower bits are those of any narrower sample. Kept beside the array they are added much sooner. */
@@ -63,12 +67,25 @@ function addPairs(samples: Wrapping, from: number, end: number): void {
 export function undoFloatDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow, stride, bytesPerSample }: RowShape): Uint8Array<ArrayBuffer> {
   const rowBytes = samplesPerRow * bytesPerSample;
   const out = new Uint8Array(bytes.byteLength);
+  const wide = bytesPerSample === 4 ? new Uint32Array(out.buffer, 0, bytes.byteLength >> 2) : null;
   for (let row = 0; row + rowBytes <= bytes.byteLength; row += rowBytes) {
-    for (let i = row + stride; i < row + rowBytes; i++) bytes[i] = bytes[i]! + bytes[i - stride]!;
+    addDifferences(bytes, row, { end: row + rowBytes, stride });
+    if (wide !== null) {
+      joinPlanes(bytes, row, wide.subarray((row / rowBytes) * samplesPerRow, (row / rowBytes + 1) * samplesPerRow));
+      continue;
+    }
     for (let byte = 0; byte < bytesPerSample; byte++) {
       const plane = row + (bytesPerSample - 1 - byte) * samplesPerRow;
       for (let sample = 0, to = row + byte; sample < samplesPerRow; sample++, to += bytesPerSample) out[to] = bytes[plane + sample]!;
     }
   }
   return out;
+}
+
+/** The four planes of a row of 32-bit floats, put together a sample at a time. */
+function joinPlanes(bytes: Uint8Array, row: number, out: Uint32Array): void {
+  const count = out.length;
+  for (let sample = 0, at = row; sample < count; sample++, at++) {
+    out[sample] = (bytes[at]! << 24) | (bytes[at + count]! << 16) | (bytes[at + 2 * count]! << 8) | bytes[at + 3 * count]!;
+  }
 }

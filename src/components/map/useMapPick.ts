@@ -9,9 +9,10 @@ const layersOf: Record<MapPick, { source: string; layers: string[] }> = {
   point: { source: 'points', layers: ['points'] },
 };
 
-/** Choosing on the map, and the bold outline of what is chosen anywhere. */
-export function useMapPick(map: ShallowRef<MlMap | null>, { pick, chosen, open }: { pick: () => MapPick; chosen: Ref<string | null>; open: (id: string) => void }): void {
+/** Choosing on the map, and the bold outline of what is chosen anywhere. `isOff`: presses on the map mean something else, such as corners of a drawing. */
+export function useMapPick(map: ShallowRef<MlMap | null>, { pick, isOff, chosen, open }: { pick: () => MapPick; isOff: () => boolean; chosen: Ref<string | null>; open: (id: string) => void }): void {
   const idAt = (event: MapLayerMouseEvent, ready: MlMap): string | null => {
+    if (isOff()) return null;
     const found = ready.queryRenderedFeatures(event.point, { layers: layersOf[pick()].layers })[0];
     const id: unknown = found?.properties.id;
     return typeof id === 'string' ? id : null;
@@ -32,7 +33,9 @@ export function useMapPick(map: ShallowRef<MlMap | null>, { pick, chosen, open }
       event.preventDefault();
       open(id);
     });
-    ready.on('mousemove', (event) => (ready.getCanvas().style.cursor = idAt(event as MapLayerMouseEvent, ready) === null ? '' : 'pointer'));
+    ready.on('mousemove', (event) => {
+      if (!isOff()) ready.getCanvas().style.cursor = idAt(event as MapLayerMouseEvent, ready) === null ? '' : 'pointer';
+    });
     mark(ready, chosen.value, true);
   }, { immediate: true });
 

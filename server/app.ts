@@ -25,6 +25,7 @@ import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { harvestRoutes, noticeStateRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
+import { languages, type Language } from '../shared/contracts/common.ts';
 import { labRoutes } from './routes/lab.ts';
 import { layerRoutes } from './routes/layers.ts';
 import { lotRoutes } from './routes/lots.ts';
@@ -155,15 +156,22 @@ function serveClient(app: Express, folder: string): void {
   if (existsSync(page)) app.get('/{*path}', (_request, response) => response.set('cache-control', 'no-cache').sendFile(page));
 }
 
+/** Pages ask in the language they are shown in (RFC 9110, 12.5.4). */
+function languageOf(request: Request): Language {
+  return (request.acceptsLanguages([...languages]) || 'en') as Language;
+}
+
 const answerProblem: ErrorRequestHandler = (error: unknown, request, response, next) => {
   if (response.headersSent) {
     next(error);
     return;
   }
-  const { status, code, title, detail, errors, extra } = problemOf(error);
+  const { status, code, title, detail, errors, extra } = problemOf(error, languageOf(request));
   if (status >= 500) log.error('request failed', error, { method: request.method, path: request.path });
   response
     .status(status)
+    .set('content-language', languageOf(request))
+    .vary('accept-language')
     .type('application/problem+json')
     .send(JSON.stringify({ type: 'about:blank', title, status, detail, code, ...(errors ? { errors } : {}), ...extra }));
 };

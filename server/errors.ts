@@ -2,37 +2,49 @@ import { AnalysisError } from '../shared/analysis/analysisError.ts';
 import { MulterError } from 'multer';
 import { ForeignKeyViolationError, NotFoundError, UniqueViolationError } from 'objection';
 import { ZodError } from 'zod';
+import type { Language } from '../shared/contracts/common.ts';
+import { inputWords } from './sentences/inputWords.ts';
+import { say, sentenceIn, type Sentence } from './sentences/say.ts';
 
-/** Something a person asked for that cannot be done, said in a sentence that names fact, value and remedy. */
+/**
+ * Something a person asked for that cannot be done, said in a sentence that names fact, value and remedy. The message is
+ * English, for the log; the answer is in the language of whoever asked. Text instead of a sentence is passed on as it is.
+ */
 export class ExpectedError extends Error {
   readonly code: string;
+  readonly said: Sentence | string;
   readonly extra: Record<string, unknown>;
 
-  constructor(code: string, message: string, extra: Record<string, unknown> = {}) {
-    super(message);
+  constructor(code: string, said: Sentence | string, extra: Record<string, unknown> = {}) {
+    super(textIn('en', said));
     this.code = code;
+    this.said = said;
     this.extra = extra;
   }
 }
 
+function textIn(language: Language, said: Sentence | string): string {
+  return typeof said === 'string' ? said : sentenceIn(language, said);
+}
+
 /** Nobody is signed in. */
 export class NotSignedIn extends ExpectedError {
-  constructor(message = 'Sign in to go on.') {
-    super('notSignedIn', message);
+  constructor(said = say('signIn')) {
+    super('notSignedIn', said);
   }
 }
 
 /** The person's roles in this estate do not reach so far. */
 export class NotAllowed extends ExpectedError {
-  constructor(message = 'Your role in this estate does not allow this. Ask the owner who may.') {
-    super('notAllowed', message);
+  constructor(said = say('roleForbids')) {
+    super('notAllowed', said);
   }
 }
 
 /** Not there, or not in this estate: both answer the same. */
 export class Missing extends ExpectedError {
-  constructor(message = 'Nothing is found at this address in this estate.') {
-    super('notFound', message);
+  constructor(said = say('nothingHere')) {
+    super('notFound', said);
   }
 }
 
@@ -45,7 +57,7 @@ export class Stale extends ExpectedError {}
 /** A change of something that two people can edit came without saying which version it was made on. */
 export class Unconditional extends ExpectedError {
   constructor() {
-    super('noVersion', 'Say which version this change was made on: send the ETag that you read as If-Match.');
+    super('noVersion', say('noVersion'));
   }
 }
 
@@ -64,16 +76,27 @@ export interface Problem {
   extra?: Record<string, unknown>;
 }
 
+/** What an error says, before it is put in a language. */
+interface Answer extends Omit<Problem, 'status' | 'title' | 'detail' | 'errors'> {
+  detail: Sentence | string;
+  errors?: { path: string; message: Sentence | string }[];
+}
+
 type Kind = abstract new (...args: never[]) => Error;
 
-const row = <E extends Error>(kind: abstract new (...args: never[]) => E, status: number, title: string, rest: (error: E) => Omit<Problem, 'status' | 'title'>) => ({
+const row = <E extends Error>(kind: abstract new (...args: never[]) => E, status: number, title: string, rest: (error: E, language: Language) => Answer) => ({
   kind: kind as Kind,
   status,
   title,
-  rest: rest as (error: Error) => Omit<Problem, 'status' | 'title'>,
+  rest: rest as (error: Error, language: Language) => Answer,
 });
 
-const said = (error: ExpectedError) => ({ code: error.code, detail: error.message, extra: error.extra });
+const said = ({ code, said: detail, extra }: ExpectedError): Answer => ({ code, detail, extra });
+
+function inputAnswer(error: ZodError, language: Language): Answer {
+  const errors = error.issues.map((issue) => ({ path: issue.path.join('.'), message: inputWords(language, issue) }));
+  return { code: 'badInput', detail: errors.map(({ path, message }) => `${path || 'input'}: ${message}`).join('; '), errors };
+}
 
 /** One row an error. Adding an error is one class and one row; the order decides, first match wins. */
 const table = [
@@ -86,18 +109,13 @@ const table = [
   row(TooMuch, 429, 'Too much', said),
   row(Unusable, 422, 'Cannot be used', said),
   row(AnalysisError, 422, 'Cannot be computed', (error) => ({ code: error.code, detail: error.message })),
-  row(ZodError, 422, 'Cannot be used', (error) => ({
-    code: 'badInput',
-    detail: error.issues.map((issue) => `${issue.path.join('.') || 'input'}: ${issue.message}`).join('; '),
-    errors: error.issues.map((issue) => ({ path: issue.path.join('.'), message: issue.message })),
-  })),
-  row(NotFoundError, 404, 'Not found', () => ({ code: 'notFound', detail: 'Nothing is found at this address in this estate.' })),
-  row(UniqueViolationError, 409, 'Clash', (error) => ({ code: 'taken', detail: `This is taken already: ${error.columns.filter((column) => column !== 'estate_id').join(', ') || 'name'}. Choose another.` })),
-  row(ForeignKeyViolationError, 409, 'Clash', () => ({ code: 'stillUsed', detail: 'Something that this refers to is not in this estate, or is still in use.' })),
-  row(MulterError, 422, 'Cannot be used', (error) => ({
-    code: error.code === 'LIMIT_FILE_SIZE' ? 'fileTooLarge' : 'badUpload',
-    detail: error.code === 'LIMIT_FILE_SIZE' ? 'This file is larger than this server accepts. Cut it to the estate or ask for a higher limit.' : `The upload could not be read: ${error.message}. Send the files in the field "files".`,
-  })),
+  row(ZodError, 422, 'Cannot be used', inputAnswer),
+  row(NotFoundError, 404, 'Not found', () => ({ code: 'notFound', detail: say('nothingHere') })),
+  row(UniqueViolationError, 409, 'Clash', (error) => ({ code: 'taken', detail: say('takenAlready', { what: error.columns.filter((column) => column !== 'estate_id').join(', ') || say('aName') }) })),
+  row(ForeignKeyViolationError, 409, 'Clash', () => ({ code: 'stillUsed', detail: say('stillUsed') })),
+  row(MulterError, 422, 'Cannot be used', (error) =>
+    error.code === 'LIMIT_FILE_SIZE' ? { code: 'fileTooLarge', detail: say('fileTooLarge') } : { code: 'badUpload', detail: say('badUpload', { why: error.message }) },
+  ),
 ];
 
 const exclusionViolation = '23P01';
@@ -105,18 +123,27 @@ const deadlock = '40P01';
 /** Text with the character NUL, in a column of text or of JSON: PostgreSQL keeps neither. */
 const unstorableText = new Set(['22021', '22P05']);
 
-/** Turns anything thrown into one reply shape. Unknown errors give a fixed sentence: their own words stay in the log. */
-export function problemOf(error: unknown): Problem {
+/** Turns anything thrown into one reply shape, in a language. Unknown errors give a fixed sentence: their own words stay in the log. */
+export function problemOf(error: unknown, language: Language = 'en'): Problem {
+  const { detail, errors, ...rest } = answerTo(error, language);
+  return {
+    ...rest,
+    detail: textIn(language, detail),
+    ...(errors ? { errors: errors.map(({ path, message }) => ({ path, message: textIn(language, message) })) } : {}),
+  };
+}
+
+function answerTo(error: unknown, language: Language): Answer & { status: number; title: string } {
   for (const entry of table) {
-    if (error instanceof entry.kind) return { status: entry.status, title: entry.title, ...entry.rest(error) };
+    if (error instanceof entry.kind) return { status: entry.status, title: entry.title, ...entry.rest(error, language) };
   }
   if (isImportProblem(error)) return { status: 422, title: 'File refused', code: error.code, detail: error.message };
-  if (nativeCode(error) === exclusionViolation) return { status: 409, title: 'Clash', code: 'vineTwice', detail: 'Some of these vines are in another lot already. Take them out there first.' };
-  if (nativeCode(error) === deadlock) return { status: 409, title: 'Clash', code: 'atOnce', detail: 'Somebody changed the same thing at the same moment. Nothing of yours was changed; look again and repeat the step.' };
-  if (unstorableText.has(nativeCode(error) ?? '')) return { status: 422, title: 'Cannot be used', code: 'badInput', detail: 'The text holds a character that cannot be kept (NUL). Type it anew instead of pasting it.' };
+  if (nativeCode(error) === exclusionViolation) return { status: 409, title: 'Clash', code: 'vineTwice', detail: say('vinesInAnotherLot') };
+  if (nativeCode(error) === deadlock) return { status: 409, title: 'Clash', code: 'atOnce', detail: say('atOnce') };
+  if (unstorableText.has(nativeCode(error) ?? '')) return { status: 422, title: 'Cannot be used', code: 'badInput', detail: say('unstorableText') };
   const status = httpStatus(error);
-  if (status !== null) return { status, title: 'Bad request', code: 'badRequest', detail: status === 413 ? 'This request is too large.' : 'This request could not be read. Check its form and try again.' };
-  return { status: 500, title: 'Fault', code: 'fault', detail: 'Something went wrong on our side. Nothing was changed; try again, and tell us if it stays.' };
+  if (status !== null) return { status, title: 'Bad request', code: 'badRequest', detail: say(status === 413 ? 'tooLarge' : 'unreadable') };
+  return { status: 500, title: 'Fault', code: 'fault', detail: say('fault') };
 }
 
 /** Importers throw their own class; its name is enough here, so that errors do not import every reader. */

@@ -1,6 +1,7 @@
 import { csrfSync } from 'csrf-sync';
 import { NotAllowed } from '../errors.ts';
 import type { Request, RequestHandler } from 'express';
+import { say } from '../sentences/say.ts';
 
 /** Token bound to the session, sent by the browser in the header `x-csrf-token` on every write. */
 export function makeCsrf(): { token: (request: Request) => string; protect: RequestHandler } {
@@ -11,7 +12,7 @@ export function makeCsrf(): { token: (request: Request) => string; protect: Requ
     token: (request) => generateToken(request),
     protect: (request, response, next) => {
       csrfSynchronisedProtection(request, response, (error?: unknown) => {
-        next(error === invalidCsrfTokenError ? new NotAllowed('This page is too old to write with. Load it again and repeat the step.') : error);
+        next(error === invalidCsrfTokenError ? new NotAllowed(say('pageTooOld')) : error);
       });
     },
   };

@@ -20,8 +20,8 @@ const askFloorMs = 250;
 /** One's own account: password, where one is signed in, and a new password for somebody who forgot it. */
 export function accountRoutes(options: Options): Router {
   const router = Router();
-  const failed = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed tries from here. Wait a quarter of an hour, then try again.' });
-  const asked = limitTries(options.signInTries, { failedOnly: false, code: 'tooManyResets', message: 'A new password was asked for too often from here. Wait a quarter of an hour, then try again.' });
+  const failed = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', sentence: 'tooManyTries' });
+  const asked = limitTries(options.signInTries, { failedOnly: false, code: 'tooManyResets', sentence: 'tooManyResets' });
 
   router.get('/account/sessions', async (request, response) => {
     const items = await listSessions(signedIn(request), { sid: request.sessionID, now: new Date() });

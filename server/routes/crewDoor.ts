@@ -9,7 +9,7 @@ import { describeSession } from '../services/sessions.ts';
 /** The door of shared phones: code, name, PIN. */
 export function crewDoorRoutes(options: { csrfToken: (request: Request) => string; demo: boolean; signInTries: number }): Router {
   const router = Router();
-  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed tries from here. Wait a quarter of an hour, then try again.' });
+  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', sentence: 'tooManyTries' });
   router.post('/crew/people', tries, async (request, response) => {
     response.json(await crewOffer(crewCodeTyped.parse(request.body).code, new Date()));
   });

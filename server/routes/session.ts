@@ -9,6 +9,7 @@ import { NotSignedIn } from '../errors.ts';
 import { acceptInvitation, readInvitation } from '../services/people/invitations.ts';
 import { changeSelf } from '../services/people/people.ts';
 import { describeSession } from '../services/sessions.ts';
+import { say } from '../sentences/say.ts';
 
 interface Options {
   passport: InstanceType<typeof Passport>;
@@ -22,7 +23,7 @@ export function sessionRoutes(options: Options): Router {
   const router = Router();
   const describe = (request: Request) =>
     describeSession(request.user?.id ?? null, { csrfToken: options.csrfToken(request), demo: options.demo, now: new Date() });
-  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', message: 'Too many failed sign-ins from here. Wait a quarter of an hour, then try again.' });
+  const tries = limitTries(options.signInTries, { failedOnly: true, code: 'tooManyTries', sentence: 'tooManySignIns' });
 
   router.get('/session', async (request, response) => {
     response.set('cache-control', 'no-store').json(await describe(request));
@@ -34,7 +35,7 @@ export function sessionRoutes(options: Options): Router {
       const handler = options.passport.authenticate('local', (error: unknown, found: Express.User | false) => (error ? reject(error as Error) : resolve(found))) as (...args: unknown[]) => void;
       handler(request, response, next);
     });
-    if (!user) throw new NotSignedIn('E-mail and password do not fit together. Check both, or ask for a new password.');
+    if (!user) throw new NotSignedIn(say('wrongSignIn'));
     await startSession(request, user, new Date());
     response.json(await describe(request));
   });

@@ -15,6 +15,7 @@ import { MeasureRecord } from '../models/MeasureRecord.ts';
 import { Membership } from '../models/Membership.ts';
 import { Scenario } from '../models/Scenario.ts';
 import { Season } from '../models/Season.ts';
+import { say } from '../sentences/say.ts';
 
 /** Makes an estate with its owner, its first season, the starting measures and the live set of lots. Returns its id. */
 export async function createEstate(personId: string, input: NewEstate, today: string): Promise<string> {
@@ -88,16 +89,16 @@ export async function changeEstate(access: Access, change: z.infer<typeof estate
   });
 }
 
-const phaseWords = { reversed: 'ends before it begins', outside: 'does not lie within the season', overlaps: 'begins before the phase ahead of it has ended' } as const;
+const phaseSentences = { reversed: 'phaseReversed', outside: 'phaseOutside', overlaps: 'phaseOverlaps' } as const;
 
 /** Moves the phases of a season that is still open. */
 export async function changeSeason(access: Access, seasonId: string, change: SeasonChange): Promise<void> {
   await Season.transaction(async (trx) => {
     const before = await Season.query(trx).findOne({ estateId: access.estateId, id: seasonId }).forUpdate().throwIfNotFound();
-    if (before.closedAt) throw new Clash('seasonClosed', `Season ${before.name} is closed. It can be read, not changed.`);
+    if (before.closedAt) throw new Clash('seasonClosed', say('seasonClosed', { season: before.name }));
     const phases = change.phases as Record<string, [string, string]>;
     const wrong = phaseProblem(phases, before);
-    if (wrong) throw new Unusable('phases', `The phase "${wrong.phase}" ${phaseWords[wrong.problem]}. Change its days.`);
+    if (wrong) throw new Unusable('phases', say(phaseSentences[wrong.problem], { phase: wrong.phase }));
     await Season.query(trx).where({ estateId: access.estateId, id: seasonId }).patch({ phases });
     await writeAudit(trx, access, { action: 'estate.season', subjectType: 'season', subjectId: seasonId, subjectName: before.name, before: { phases: before.phases }, after: { phases } });
   });

@@ -3,6 +3,7 @@ import type { Access } from '../access/access.ts';
 import { Clash } from '../errors.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
 import { MeasureRecord } from '../models/MeasureRecord.ts';
+import { say } from '../sentences/say.ts';
 
 export async function listMeasures(access: Access): Promise<MeasureView[]> {
   const rows = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
@@ -13,7 +14,7 @@ export async function listMeasures(access: Access): Promise<MeasureView[]> {
 export async function addMeasure(access: Access, input: NewMeasure): Promise<MeasureView> {
   return MeasureRecord.transaction(async (trx) => {
     const code = codeFrom(input.name);
-    if (await MeasureRecord.query(trx).findOne({ estateId: access.estateId, code })) throw new Clash('taken', `There is a measure with the name "${input.name}" already. Choose another name.`);
+    if (await MeasureRecord.query(trx).findOne({ estateId: access.estateId, code })) throw new Clash('taken', say('measureNameTaken', { name: input.name }));
     const row = await MeasureRecord.query(trx).insertAndFetch({ ...input, code, estateId: access.estateId });
     await writeAudit(trx, access, { action: 'measures.add', subjectType: 'measure', subjectId: row.id, subjectName: input.name, after: input });
     return viewOf(row);

@@ -13,6 +13,7 @@ import { Estate } from '../models/Estate.ts';
 import { Membership } from '../models/Membership.ts';
 import { Person } from '../models/Person.ts';
 import { PickIntervalChange } from '../models/PickIntervalChange.ts';
+import { say } from '../sentences/say.ts';
 
 /** Restrictions of the estate or of one block, newest first; those in force are marked. With the names of those who may lift one. */
 export async function listRestrictions(access: Access, options: { blockId?: string; now: Date }): Promise<{ items: RestrictionView[]; lifters: string[] }> {
@@ -26,10 +27,10 @@ export async function listRestrictions(access: Access, options: { blockId?: stri
 export async function setRestriction(access: Access, input: NewRestriction): Promise<{ id: string }> {
   return EntryRestriction.transaction(async (trx) => {
     const block = await Block.query(trx).findOne({ estateId: access.estateId, id: input.blockId }).whereNull('retiredAt');
-    if (!block) throw new Missing('This block is not in this estate.');
+    if (!block) throw new Missing(say('unknownBlock'));
     if (input.rowIds) {
       const known = await BlockRow.query(trx).where({ estateId: access.estateId, blockId: block.id }).whereIn('id', input.rowIds).resultSize();
-      if (known !== new Set(input.rowIds).size) throw new Unusable('unknownRows', `Some of these rows are not rows of ${block.name}. Choose the rows again.`);
+      if (known !== new Set(input.rowIds).size) throw new Unusable('unknownRows', say('unknownRows', { block: block.name }));
     }
     const row = await EntryRestriction.query(trx).insert({ ...input, startsAt: new Date(input.startsAt), endsAt: new Date(input.endsAt), estateId: access.estateId, setBy: access.personId });
     await tellEverybody(access, block.name, input, trx);
@@ -42,8 +43,8 @@ export async function setRestriction(access: Access, input: NewRestriction): Pro
 export async function liftRestriction(access: Access, restrictionId: string, options: { reason: string; now: Date }): Promise<void> {
   await EntryRestriction.transaction(async (trx) => {
     const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
-    if (row.liftedAt) throw new Clash('lifted', 'This restriction was lifted already.');
-    if (row.endsAt <= options.now) throw new Clash('over', 'This entry restriction has ended by itself.');
+    if (row.liftedAt) throw new Clash('lifted', say('restrictionLifted'));
+    if (row.endsAt <= options.now) throw new Clash('over', say('restrictionOver'));
     await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
     await tellLifted(access, row, options.reason, trx);
     await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString(), noPickBefore: row.noPickBefore }, reason: options.reason });
@@ -59,11 +60,11 @@ export async function changePickInterval(access: Access, restrictionId: string, 
     const row = await EntryRestriction.query(trx).findOne({ estateId: access.estateId, id: restrictionId }).forUpdate().throwIfNotFound();
     const { noPickBefore: after, basis, reason } = input;
     const before = row.noPickBefore;
-    if (before === after) throw new Clash('unchanged', after === null ? 'No pre-harvest interval is recorded here.' : `The day is ${after} already.`);
+    if (before === after) throw new Clash('unchanged', after === null ? say('noPickInterval') : say('pickDaySame', { day: after }));
     const { timeZone } = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
     const today = dayIn(timeZone, now);
-    if ((before === null || before <= today) && (after === null || after <= today)) throw new Clash('over', 'This pre-harvest interval has ended by itself.');
-    if (basis === 'labelAllows' && (before === null || after! > before)) throw new Unusable('notEarlier', 'The label allows an earlier day only where the recorded one is later. To put a day right, choose that it was typed wrong.');
+    if ((before === null || before <= today) && (after === null || after <= today)) throw new Clash('over', say('pickIntervalOver'));
+    if (basis === 'labelAllows' && (before === null || after! > before)) throw new Unusable('notEarlier', say('notEarlier'));
     await PickIntervalChange.query(trx).insert({ estateId: access.estateId, restrictionId, basis, dayBefore: before, dayAfter: after, reason, changedBy: access.personId, changedAt: now });
     await row.$query(trx).patch({ noPickBefore: after });
     await writeAudit(trx, access, { action: 'restrictions.pickInterval', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { noPickBefore: before }, after: { noPickBefore: after, basis }, reason });

@@ -8,6 +8,7 @@ import { join } from 'node:path';
 import { Missing, Unusable } from '../errors.ts';
 import { fileStore } from './fileStore.ts';
 import type { Upload } from './uploads.ts';
+import { say } from '../sentences/say.ts';
 
 /** Whose request is being answered. An upload's name begins with it, so that nobody can go on with, or take, somebody else's. */
 const owners = new AsyncLocalStorage<string>();
@@ -76,8 +77,8 @@ export async function takePieces(owner: string, ids: readonly string[]): Promise
   return Promise.all(ids.map(async (id): Promise<Upload> => {
     if (!id.startsWith(`${owner}.`)) throw new Missing();
     const upload = await store.getUpload(id).catch(() => null);
-    if (upload === null) throw new Missing('This upload is not here any more. Send the file again.');
-    if (upload.size !== upload.offset) throw new Unusable('uploadUnfinished', `Of ${upload.metadata?.filename ?? 'the file'} only ${upload.offset} of ${upload.size} bytes have arrived. Go on with the upload first.`);
+    if (upload === null) throw new Missing(say('uploadGone'));
+    if (upload.size !== upload.offset) throw new Unusable('uploadUnfinished', say('uploadUnfinished', { file: upload.metadata?.filename ?? say('theFile'), got: upload.offset, size: upload.size ?? 0 }));
     await rm(join(fileStore().incomingFolder, `${id}.json`), { force: true });
     return { path: join(fileStore().incomingFolder, id), name: upload.metadata!.filename!, bytes: upload.size! };
   }));

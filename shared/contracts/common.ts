@@ -6,6 +6,7 @@ export const isoDate = z.iso.date();
 export const isoTime = z.iso.datetime({ offset: true });
 export const languages = ['en', 'es', 'fr', 'it', 'pt'] as const;
 export const language = z.enum(languages);
+export type Language = z.infer<typeof language>;
 export const units = z.enum(['metric', 'us']);
 export const themes = z.enum(['system', 'light', 'dark', 'outdoor']);
 

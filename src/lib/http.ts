@@ -1,6 +1,6 @@
 import { offlineProblem, problemFrom, HttpProblem } from './httpProblem.ts';
 
-/** The only door to the server: cookie session, CSRF header on writes, problem+json turned into HttpProblem. */
+/** The only door to the server: cookie session, CSRF header on writes, refusals in the language of the page, problem+json turned into HttpProblem. */
 
 type QueryValue = string | number | boolean | null | undefined;
 
@@ -144,6 +144,7 @@ function serverTimeOf(response: Response): Date | null {
 function headersOf(method: Method, body: unknown, options: RequestOptions): Record<string, string> {
   return {
     accept: 'application/json, application/problem+json',
+    'accept-language': document.documentElement.lang || 'en',
     ...(body === undefined ? {} : { 'content-type': 'application/json' }),
     ...(method === 'GET' ? {} : { 'x-csrf-token': csrfToken }),
     ...(options.ifMatch === undefined ? {} : { 'if-match': tagText(options.ifMatch) }),
@@ -175,6 +176,7 @@ function upload<T>(path: string, form: FormData, options: UploadOptions = {}): P
     request.open('POST', addressOf(path, options.query));
     request.responseType = 'json';
     request.setRequestHeader('accept', 'application/json, application/problem+json');
+    request.setRequestHeader('accept-language', document.documentElement.lang || 'en');
     request.setRequestHeader('x-csrf-token', csrfToken);
     const patience = patienceOf(request, options.withinMs);
     request.upload.onprogress = (event) => {

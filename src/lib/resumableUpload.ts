@@ -50,7 +50,10 @@ export function resumableUpload(file: File, endpoint: string, handlers: Resumabl
         metadata: { filename: file.name },
         removeFingerprintOnSuccess: true,
         // A token from before a sign-in would be refused: each piece carries the newest.
-        onBeforeRequest: (request) => request.setHeader('x-csrf-token', currentCsrfToken()),
+        onBeforeRequest: (request) => {
+          request.setHeader('x-csrf-token', currentCsrfToken());
+          request.setHeader('accept-language', document.documentElement.lang || 'en');
+        },
         onShouldRetry: (error) => mayPass(error),
         onProgress: (sent) => {
           handlers.onWaiting(false);

@@ -223,7 +223,7 @@ describe('a stop on a pick date', () => {
     await setParts(lotId, [{ zoneId: block.zoneIds[1], rowIds: rows.slice(-5) }]);
     const restriction = await EntryRestriction.query().insertAndFetch({ estateId: estate.estateId, blockId: block.blockId, rowIds: rows.slice(-3) as never, startsAt: new Date('2026-10-10T06:00:00Z'), endsAt: new Date('2026-10-11T12:00:00Z'), product: 'Sulphur', labelInterval: '30 h', setBy: estate.ownerId });
     expect((await stopped(lotId, '2026-10-11')).status).toBe(409);
-    expect((await stopped(lotId, '2026-10-11')).body.detail).toMatch(/closes the block until 11 Oct 2026/);
+    expect((await stopped(lotId, '2026-10-11')).body.detail).toMatch(/closes the block until Sun, 11 Oct 2026, 12:00/);
     expect((await stopped(lotId, '2026-10-09')).status).toBe(204);
     expect((await stopped(lotId, '2026-10-12')).status).toBe(204);
     await setParts(lotId, [{ zoneId: block.zoneIds[1], rowIds: rows.slice(-5, -3) }]);

@@ -242,6 +242,6 @@ describe('learned factors', () => {
     expect([4800 / netT, 4800 / 5, 4800 / 6]).toContain(litres.mean);
     const answer = await winemaker.write('put', `${base()}/factors`).send({ kind: 'mustL', about: 'red', isOn: true });
     expect(answer.status).toBe(422);
-    expect(answer.body.detail).toMatch(/rests on 1 lots; 3 are needed/);
+    expect(answer.body.detail).toMatch(/rests on one lot; 3 are needed/);
   });
 });

@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { Membership } from '../../server/models/Membership.ts';
+import { fr } from '../../server/sentences/fr.ts';
 import { startTestApp, testPassword, type TestApp } from './support/testApp.ts';
 
 let app: TestApp;
@@ -34,6 +35,17 @@ describe('the door', () => {
     const unknown = await one.signIn('nobody@test.example', 'not this one');
     expect(wrong.status).toBe(401);
     expect(unknown.body).toEqual(wrong.body);
+  });
+
+  it('refuses in the language of the page, input field by field', async () => {
+    const one = await app.as(estate.ownerEmail);
+    const wrong = await one.write('post', '/api/session').set('accept-language', 'fr').send({ email: estate.ownerEmail, password: 'not this one' });
+    expect(wrong.headers['content-language']).toBe('fr');
+    expect(wrong.body).toMatchObject({ code: 'notSignedIn', detail: fr.wrongSignIn });
+    const field = await one.write('patch', `/api/estates/${estate.estateId}`).set('accept-language', 'pt').send({ timeZone: 'Nowhere/Town' });
+    expect(field.body.errors).toEqual([{ path: 'timeZone', message: 'Isto não é um fuso horário; escolha um da lista, como Europe/Lisbon.' }]);
+    const other = await one.get('/api/estates/none/people').set('accept-language', 'de');
+    expect(other.headers['content-language']).toBe('en');
   });
 
   it('refuses a write without the token of the session', async () => {

@@ -5,11 +5,12 @@ import { PasswordReset } from '../../models/PasswordReset.ts';
 import { Person } from '../../models/Person.ts';
 import { endSessions } from '../../models/SessionRecord.ts';
 import { auditAccount, mailAboutAccount } from './accountMail.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Sets a new password for somebody who knows the old one; every other session of theirs ends, and they are told by mail. */
 export async function changePassword(personId: string, change: PasswordChange, options: { sid: string; now: Date }): Promise<{ ended: number }> {
   const person = await Person.query().findById(personId).throwIfNotFound();
-  if (!(await passwordMatches(person.passwordHash, change.currentPassword))) throw new Unusable('wrongPassword', 'The current password is not right. The new one was not set.');
+  if (!(await passwordMatches(person.passwordHash, change.currentPassword))) throw new Unusable('wrongPassword', say('wrongPasswordNow'));
   const passwordHash = await hashPassword(change.password);
   return Person.transaction(async (trx) => {
     await Person.query(trx).findById(personId).patch({ passwordHash });

@@ -2,6 +2,7 @@ import { newEstate, type NewEstate } from '../../../shared/contracts/estate.ts';
 import { Unusable } from '../../errors.ts';
 import { Person } from '../../models/Person.ts';
 import { createEstate } from '../estates.ts';
+import { say } from '../../sentences/say.ts';
 
 /** What whoever runs the server says of an owner. Without `estate` the address must be known already. */
 export interface OwnerRequest {
@@ -16,8 +17,8 @@ export interface OwnerRequest {
  */
 export async function makeOwner({ email, name, estate }: OwnerRequest, now: Date): Promise<{ madePerson: boolean; madeEstate: boolean }> {
   const known = await Person.query().findOne({ email });
-  if (!known && (name === null || estate === null)) throw new Unusable('newOwner', `Nobody is known by ${email}. Give --name and --estate as well, and both are made.`);
-  if (known?.isDemo) throw new Unusable('demoPerson', 'People of the demo estate own no other estate. Give an address of your own.');
+  if (!known && (name === null || estate === null)) throw new Unusable('newOwner', say('newOwner', { email }));
+  if (known?.isDemo) throw new Unusable('demoPerson', say('demoPersonOwns'));
   const facts = estate === null ? null : newEstate.parse(estate);
   const person = known ?? (await Person.query().insert({ email, name: name!, language: facts!.languages[0]! }));
   if (facts) await createEstate(person.id, facts, now.toISOString().slice(0, 10));

@@ -2,6 +2,7 @@ import type { OpenSession } from '../../../shared/contracts/account.ts';
 import { hashToken } from '../../access/passwords.ts';
 import { Missing } from '../../errors.ts';
 import { endSessions, SessionRecord, sessionsOf } from '../../models/SessionRecord.ts';
+import { say } from '../../sentences/say.ts';
 
 /** How long a session lasts after its last use; when it was used last follows from when it runs out. */
 export const sessionMs = 7 * 86_400_000;
@@ -21,7 +22,7 @@ export async function listSessions(personId: string, options: { sid: string; now
 /** Ends one of the person's own sessions. */
 export async function endSession(personId: string, key: string, now: Date): Promise<void> {
   const found = (await sessionsOf(personId, now)).find(({ sid }) => hashToken(sid) === key);
-  if (!found) throw new Missing('This sign-in has ended already.');
+  if (!found) throw new Missing(say('sessionEnded'));
   await SessionRecord.query().deleteById(found.sid);
 }
 

@@ -6,6 +6,7 @@ import { PasswordReset } from '../../models/PasswordReset.ts';
 import { Person } from '../../models/Person.ts';
 import { endSessions } from '../../models/SessionRecord.ts';
 import { auditAccount, mailAboutAccount } from './accountMail.ts';
+import { say } from '../../sentences/say.ts';
 
 const linkMinutes = 60;
 /** More links in an hour are not written: nobody's letter box is filled by somebody else. */
@@ -41,8 +42,8 @@ async function writeLink(trx: TransactionOrKnex, personId: string, now: Date): P
  */
 export async function linkFor(email: string, now: Date): Promise<string> {
   const person = await Person.query().findOne({ email });
-  if (!person) throw new Missing(`Nobody is known by ${email}.`);
-  if (person.isDemo) throw new Clash('demoPerson', 'People of the demo estate keep their password.');
+  if (!person) throw new Missing(say('unknownEmail', { email }));
+  if (person.isDemo) throw new Clash('demoPerson', say('demoPassword'));
   return PasswordReset.transaction(async (trx) => {
     await auditAccount(trx, person, 'account.askReset');
     return writeLink(trx, person.id, now);
@@ -74,10 +75,10 @@ export async function useReset(answer: ResetAnswer, now: Date): Promise<void> {
 
 async function openReset(token: string, now: Date): Promise<PasswordReset> {
   const reset = await PasswordReset.query().findOne({ tokenHash: hashToken(token) });
-  if (!reset) throw new Missing('This link is not known. Ask for a new one.');
+  if (!reset) throw new Missing(say('unknownReset'));
   if (reset.usedAt) throw used();
-  if (reset.expiresAt < now) throw new Clash('expiredReset', 'This link has expired. Ask for a new one.');
+  if (reset.expiresAt < now) throw new Clash('expiredReset', say('expiredReset'));
   return reset;
 }
 
-const used = () => new Clash('usedReset', 'This link has been used already, or a newer one was. Ask for a new one.');
+const used = () => new Clash('usedReset', say('usedReset'));

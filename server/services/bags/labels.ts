@@ -6,6 +6,7 @@ import { Estate } from '../../models/Estate.ts';
 import { Reading } from '../../models/Reading.ts';
 import { Season } from '../../models/Season.ts';
 import { seasonOn } from './bagContext.ts';
+import { say } from '../../sentences/say.ts';
 
 /**
  * A label that lay on the lab's bench, or on a printed roll, before the phone sent what is in the bag: the bag takes the
@@ -41,7 +42,7 @@ export async function seasonFinder(trx: Transaction, estateId: string): Promise<
   const { timeZone } = await Estate.query(trx).findById(estateId).select('timeZone').throwIfNotFound();
   return (bag) => {
     const season = seasonOn(seasons, (bag.closedAt ?? bag.createdAt).toISOString(), timeZone) ?? seasons[0];
-    if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make one first; figures belong to a season.');
+    if (!season) throw new Unusable('noSeason', say('noSeason'));
     return season.id;
   };
 }

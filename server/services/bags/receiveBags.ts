@@ -4,6 +4,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from './bagContext.ts';
+import { say } from '../../sentences/say.ts';
 
 export interface Receipt {
   code: string;
@@ -37,11 +38,11 @@ export async function reportMissing(access: Access, bagIds: readonly string[], n
   const { estateId, personId } = access;
   await Bag.transaction(async (trx) => {
     const bags = await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).forUpdate();
-    if (bags.length !== new Set(bagIds).size) throw new Missing('Some of these bags are not in this estate.');
+    if (bags.length !== new Set(bagIds).size) throw new Missing(say('unknownBags'));
     const unsent = bags.find(({ closedAt }) => closedAt === null);
-    if (unsent) throw new Clash('neverExpected', `Nobody has sent what is in ${unsent.code}; it cannot be missing.`);
+    if (unsent) throw new Clash('neverExpected', say('neverExpected', { code: unsent.code }));
     const measured = await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bagIds).first();
-    if (measured) throw new Clash('measured', `${bags.find(({ id }) => id === measured.bagId)!.code} has results, so it was here. Exchange its label if the results belong to another bag.`);
+    if (measured) throw new Clash('measured', say('bagHasResults', { code: bags.find(({ id }) => id === measured.bagId)!.code }));
     await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).patch({ state: 'closed', receivedAt: null, receivedBy: null, missingAt: now, missingBy: personId });
     await writeAudit(trx, access, { action: 'bags.missing', subjectType: 'bags', subjectId: estateId, subjectName: bags.map(({ code }) => code).join(', ').slice(0, 200), after: { count: bags.length } });
   });

@@ -7,6 +7,7 @@ import { Bag } from '../../models/Bag.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from './bagContext.ts';
 import { seasonFinder, takeLabelOver } from './labels.ts';
+import { say } from '../../sentences/say.ts';
 
 /**
  * Settles a label that is on two bags. `same`: one bag was closed by two people; the first closing takes in the vines and
@@ -18,7 +19,7 @@ export async function settleClash(access: Access, bagId: string, input: z.infer<
   await Bag.transaction(async (trx) => {
     await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
     const later = await Bag.query(trx).findOne({ estateId, id: bagId }).throwIfNotFound();
-    if (later.clashesWith === null || later.state === 'void') throw new Clash('settled', `${later.code} is on one bag only; there is nothing to settle.`);
+    if (later.clashesWith === null || later.state === 'void') throw new Clash('settled', say('labelOnce', { code: later.code }));
     const first = await Bag.query(trx).findOne({ estateId, id: later.clashesWith }).throwIfNotFound();
     const closing = Bag.query(trx).where({ estateId, id: later.id });
     if (input.choice === 'same') {
@@ -30,9 +31,9 @@ export async function settleClash(access: Access, bagId: string, input: z.infer<
       await Reading.query(trx).where({ estateId, bagId: later.id }).patch({ excludedReason: input.reason, excludedBy: personId });
       await closing.patch({ state: 'void' });
     } else {
-      if (input.newCode === null) throw new Missing('Name the label that the later bag carries now.');
+      if (input.newCode === null) throw new Missing(say('nameNewLabel'));
       const [holder] = await holdersOf(trx, estateId, [input.newCode]);
-      if (holder?.closedAt) throw new Clash('labelTaken', `The label ${input.newCode} is on another bag already. Name one that is free.`);
+      if (holder?.closedAt) throw new Clash('labelTaken', say('labelTaken', { code: input.newCode }));
       await closing.patch({ code: input.newCode, clashesWith: holder?.id ?? null });
       if (holder) await takeLabelOver(trx, access, { bag: later, from: holder, seasonId: (await seasonFinder(trx, estateId))(later) });
     }

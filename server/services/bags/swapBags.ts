@@ -6,6 +6,7 @@ import { Bag } from '../../models/Bag.ts';
 import { holdersOf } from './bagContext.ts';
 import { moveLabResults, seasonFinder } from './labels.ts';
 import { tellOfSwap } from './tellOfSwap.ts';
+import { say } from '../../sentences/say.ts';
 
 /**
  * Exchanges the labels of two bags in one step. What was seen at the row stays with the closing; label, receipt and the
@@ -32,7 +33,7 @@ export async function swapBags(access: Access, input: { codes: readonly [string,
 }
 
 function missing(code: string): never {
-  throw new Missing(`No bag carries the label ${code} in this estate. Read it again, or take the bag in first.`);
+  throw new Missing(say('unknownLabel', { code }));
 }
 
 async function exchange(trx: Transaction, estateId: string, { one, other, now }: { one: Bag; other: Bag; now: Date }): Promise<void> {

@@ -15,6 +15,7 @@ import { eraseVines, Vine, writeVines, type VineRecord } from '../../models/Vine
 import { readCensusTable } from './censusTable.ts';
 import { findBlock } from './view.ts';
 import { vineTotals } from './vineCounts.ts';
+import { say } from '../../sentences/say.ts';
 
 export interface CensusOutcome {
   counts: VineCounts;
@@ -26,7 +27,7 @@ export interface CensusOutcome {
 /** Writes what stands in the places of a block. Crew propose; the mark of somebody who may decide takes a proposal over. */
 export async function changeCensus(access: Access, blockId: string, change: CensusChange, now: Date): Promise<CensusOutcome> {
   const decides = may(access.roles, 'census.edit');
-  if (change.complete && !decides) throw new NotAllowed('You may mark single vines. A complete census is taken over by the manager or the agronomist.');
+  if (change.complete && !decides) throw new NotAllowed(say('censusWhole'));
   const where = { estateId: access.estateId, blockId };
   const done = await Block.transaction(async (trx) => {
     const block = await findBlock(access, blockId, trx);
@@ -60,8 +61,8 @@ async function marksOf(trx: Transaction, block: Block, change: CensusChange): Pr
   const places = new Map(rows.map((row, at) => [stored[at]!.id, { first: firstOrdinal(row), count: row.vineCount, label: stored[at]!.label }]));
   for (const { rowId, ordinal } of change.marks ?? []) {
     const place = places.get(rowId);
-    if (!place) throw new Unusable('noSuchRow', `Row ${rowId} is not a row of ${block.name} any more. Load the rows again; nothing was saved.`);
-    if (ordinal < place.first || ordinal >= place.first + place.count) throw new Unusable('noSuchVine', `Row ${place.label} of ${block.name} has no vine at place ${ordinal}; nothing was saved.`);
+    if (!place) throw new Unusable('noSuchRow', say('noSuchRow', { row: rowId, block: block.name }));
+    if (ordinal < place.first || ordinal >= place.first + place.count) throw new Unusable('noSuchVine', say('noSuchPlace', { row: place.label, block: block.name, place: ordinal }));
   }
   return change.marks ?? [];
 }

@@ -2,6 +2,7 @@ import Papa from 'papaparse';
 import { vineStateOf } from '../../../shared/catalog/vineStateWords.ts';
 import type { CensusMark } from '../../../shared/contracts/rows.ts';
 import { Unusable } from '../../errors.ts';
+import { say, type Sentence } from '../../sentences/say.ts';
 
 /** What a table needs to be understood: which row carries a number, and which place in it a vine number is. */
 export interface NumberedRow {
@@ -20,29 +21,29 @@ export function readCensusTable(text: string, rows: readonly NumberedRow[]): Cen
   const first = data[0] ?? [];
   const headed = first.length >= 3 && vineStateOf(first[2]!) === null && Number.isNaN(Number(first[1]));
   const marks: CensusMark[] = [];
-  const errors: { path: string; message: string }[] = [];
+  const errors: { line: number; problem: Sentence }[] = [];
   data.slice(headed ? 1 : 0).forEach((line, at) => {
     const read = markOf(line, byLabel);
-    if (typeof read === 'string') errors.push({ path: `line ${at + (headed ? 2 : 1)}`, message: read });
+    if ('key' in read) errors.push({ line: at + (headed ? 2 : 1), problem: read });
     else marks.push(read);
   });
-  if (data.length === 0) throw new Unusable('emptyTable', 'The table is empty. Paste lines of row number, vine number and state.');
+  if (data.length === 0) throw new Unusable('emptyTable', say('emptyTable'));
   if (errors.length > 0) {
-    const [{ path, message }] = errors as [{ path: string; message: string }];
-    throw new Unusable('badTable', `${errors.length} of ${data.length} lines cannot be used; nothing was saved. In ${path}: ${message}`, { errors: errors.slice(0, shownErrors) });
+    const [{ line, problem }] = errors as [{ line: number; problem: Sentence }];
+    throw new Unusable('badTable', say('badTable', { bad: errors.length, lines: data.length, line, problem }), { errors: errors.slice(0, shownErrors).map((each) => ({ path: `line ${each.line}`, message: each.problem })) });
   }
   return marks;
 }
 
-function markOf(line: readonly string[], rows: ReadonlyMap<string, NumberedRow>): CensusMark | string {
+function markOf(line: readonly string[], rows: ReadonlyMap<string, NumberedRow>): CensusMark | Sentence {
   const [label = '', vine = '', word = ''] = line.map((cell) => cell.trim());
-  if (line.length < 3) return `three columns are needed, row, vine and state, and this line has ${line.length}.`;
+  if (line.length < 3) return say('censusColumns', { count: line.length });
   const row = rows.get(label);
-  if (!row) return `there is no row ${label || '(empty)'} in this block.`;
+  if (!row) return say('censusRow', { row: label || '–' });
   const ordinal = row.ordinalOf(Number(vine));
-  if (vine === '' || ordinal === null) return `row ${label} has vines 1 to ${row.vineCount}, not ${vine || '(empty)'}.`;
+  if (vine === '' || ordinal === null) return say('censusVine', { row: label, last: row.vineCount, vine: vine || '–' });
   const state = vineStateOf(word);
-  if (state === null) return `"${word.slice(0, 40)}" is no state; write missing, dead, replant, off-type, sick or living.`;
+  if (state === null) return say('censusState', { word: word.slice(0, 40) });
   return { rowId: row.rowId, ordinal, state };
 }
 

@@ -16,6 +16,7 @@ import { checkOutline } from './outlines.ts';
 import { rebuildRows } from './rebuildRows.ts';
 import { hasSurveyedRows, requireNothingAtStake } from './rowsAtStake.ts';
 import { findBlock, viewBlock } from './view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** What an outline would come to: area, overlaps, distance. Saves nothing. */
 export async function previewOutline(access: Access, asked: { boundary: OutlineGeometry; blockId: string | null; bookAreaHa: number | null }): Promise<OutlineCheck> {
@@ -96,8 +97,8 @@ export async function retireBlock(access: Access, blockId: string, made: { versi
       { estateId: access.estateId, blockId },
     )) as { rows: { rounds: number; lots: number }[] };
     const { rounds, lots } = used.rows[0]!;
-    if (rounds > 0) throw new Clash('blockInUse', `${block.name} has ${rounds} open round${rounds === 1 ? '' : 's'}. Close or call them off first.`);
-    if (lots > 0) throw new Clash('blockInUse', `${block.name} is part of ${lots} pick lot${lots === 1 ? '' : 's'} of this season. Take it out there first.`);
+    if (rounds > 0) throw new Clash('blockInUse', say('blockWalked', { block: block.name, n: rounds }));
+    if (lots > 0) throw new Clash('blockInUse', say('blockInLots', { block: block.name, n: lots }));
     await Block.query(trx).where({ estateId: access.estateId, id: blockId }).patch({ retiredAt: made.now, version: block.version + 1 });
     await writeAudit(trx, access, { action: 'block.retire', subjectType: 'block', subjectId: blockId, subjectName: block.name });
   });
@@ -108,7 +109,7 @@ export async function lockBlock(trx: Transaction, access: Access, blockId: strin
   await Block.query(trx).findOne({ estateId: access.estateId, id: blockId }).whereNull('retiredAt').forUpdate().select('id').throwIfNotFound();
   const block = await findBlock(access, blockId, trx);
   if (block.version !== made.version) {
-    throw new Stale('blockChanged', `${block.name} was changed meanwhile (version ${block.version}, yours was ${made.version}). Look at the new state and repeat your change.`, {
+    throw new Stale('blockChanged', say('blockChanged', { block: block.name, version: block.version, yours: made.version }), {
       current: await viewBlock(access, blockId, { now: made.now, trx }),
     });
   }
@@ -117,7 +118,7 @@ export async function lockBlock(trx: Transaction, access: Access, blockId: strin
 
 async function requireFreeName(trx: Transaction, access: Access, blockId: string, name: string): Promise<void> {
   const taken = await Block.query(trx).where({ estateId: access.estateId }).whereNull('retiredAt').whereNot({ id: blockId }).whereRaw('lower(name) = lower(?)', [name]).resultSize();
-  if (taken > 0) throw new Clash('nameTaken', `This estate has a block named ${name} already. Choose another name.`);
+  if (taken > 0) throw new Clash('nameTaken', say('nameTaken', { name }));
 }
 
 /** Layers are cells on a block's own grid: a new grid needs them placed again from their files. */

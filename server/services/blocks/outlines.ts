@@ -7,6 +7,7 @@ import { Unusable } from '../../errors.ts';
 import { Block } from '../../models/Block.ts';
 import { Estate } from '../../models/Estate.ts';
 import { fromGeoJson } from '../../models/geometry.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Common ground below this is drawing inaccuracy along a shared edge. */
 const leastOverlapM2 = 10;
@@ -58,8 +59,8 @@ async function requireValid(trx: TransactionOrKnex | undefined, shape: MultiPoly
   );
   const { valid, reason, lon, lat } = (answer as { rows: { valid: boolean; reason: string; lon: number | null; lat: number | null }[] }).rows[0]!;
   if (valid) return;
-  const place = lon === null || lat === null ? '' : ` near ${lat.toFixed(5)}, ${lon.toFixed(5)} (latitude, longitude)`;
-  throw new Unusable('outlineInvalid', `This outline cannot be used${place}: ${reason.toLowerCase()}. Redraw that part.`, lon === null ? {} : { place: [lon, lat] });
+  if (lon === null || lat === null) throw new Unusable('outlineInvalid', say('outlineInvalid', { reason: reason.toLowerCase() }));
+  throw new Unusable('outlineInvalid', say('outlineInvalidNear', { reason: reason.toLowerCase(), lat: lat.toFixed(5), lon: lon.toFixed(5) }), { place: [lon, lat] });
 }
 
 async function overlaps(trx: TransactionOrKnex | undefined, access: Access, shape: MultiPolygon, blockId: string | null): Promise<BlockWarning[]> {

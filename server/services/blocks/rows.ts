@@ -13,6 +13,7 @@ import { Vine } from '../../models/Vine.ts';
 import { lockBlock } from './change.ts';
 import { findBlock } from './view.ts';
 import { vineTotals } from './vineCounts.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Rows of a block in order across the block, with pieces, labels and the vines that are known. */
 export async function listRows(access: Access, blockId: string): Promise<BlockRowsView> {
@@ -52,7 +53,7 @@ function cornerOf(block: Block, rows: BlockRow[], change: NumberingChange): Part
   if (change.corner === undefined) return {};
   const laid = rowsFromStored({ boundary: block.boundary.coordinates as unknown as MultiPolygonLonLat, rowBearingDeg: block.rowBearingDeg, epsg: block.epsg }, rows);
   const corner = numberingFromTap(laid, toUtm(change.corner, block.epsg));
-  if (corner === null) throw new Unusable('noRows', `${block.name} has no rows to number. Enter row spacing and bearing first.`);
+  if (corner === null) throw new Unusable('noRows', say('noRowsToNumber', { block: block.name }));
   return corner;
 }
 

@@ -8,6 +8,7 @@ import { rowsFromStored } from '../../../shared/geo/storedRows.ts';
 import { Clash } from '../../errors.ts';
 import type { Block } from '../../models/Block.ts';
 import { BlockRow } from '../../models/BlockRow.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Built rows come out again to the millimetre; surveyed ones differ by more than the width of a post (judgement). */
 const sameM = 0.25;
@@ -39,9 +40,9 @@ export async function requireNothingAtStake(trx: TransactionOrKnex, block: Block
   if (!surveyed && effects.marksLost === 0 && referred === 0) return;
   const atStake: RowsAtStake = { ...effects, surveyed, referred };
   const losses = [
-    surveyed ? 'its surveyed rows would be laid by spacing and bearing instead' : null,
-    referred > 0 ? `${referred} rows with readings, targets or lots would be retired` : null,
-    effects.marksLost > 0 ? `${effects.marksLost} marks of vines would be lost` : null,
-  ].filter((loss) => loss !== null);
-  throw new Clash('rowsAtStake', `The rows of ${block.name} would be built anew: ${losses.join('; ')}. Send rowsMayGo with the change to do it all the same.`, { atStake });
+    ...(surveyed ? [say('surveyGoes')] : []),
+    ...(referred > 0 ? [say('rowsGo', { n: referred })] : []),
+    ...(effects.marksLost > 0 ? [say('marksGo', { n: effects.marksLost })] : []),
+  ];
+  throw new Clash('rowsAtStake', say('rowsAtStake', { block: block.name, losses: { all: losses } }), { atStake });
 }

@@ -9,6 +9,7 @@ import { CrewCode } from '../../models/CrewCode.ts';
 import { CrewPin } from '../../models/CrewPin.ts';
 import { Estate } from '../../models/Estate.ts';
 import { crewOnlyPeople } from './crewOnlyPeople.ts';
+import { say } from '../../sentences/say.ts';
 
 const days = 90;
 /** Eight of nineteen letters: 1.7·10¹⁰ codes, behind a limit of tries. */
@@ -52,7 +53,7 @@ export async function crewCodeState(access: Access, now: Date): Promise<CrewCode
 export async function estateOfCode(typed: string, now: Date): Promise<string> {
   const code = typed.toUpperCase().replace(/[^A-Z]/g, '');
   const open = await CrewCode.query().findOne({ codeHash: hashToken(code) }).whereNull('endedAt').where('expiresAt', '>', now);
-  if (!open) throw new Missing('This crew code opens nothing. Check its letters, or ask the manager for the code of today.');
+  if (!open) throw new Missing(say('unknownCrewCode'));
   return open.estateId;
 }
 

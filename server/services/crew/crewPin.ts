@@ -8,6 +8,7 @@ import { Membership } from '../../models/Membership.ts';
 import { Person } from '../../models/Person.ts';
 import { estateOfCode } from './crewCode.ts';
 import { crewOnlyPeople } from './crewOnlyPeople.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Wrong PINs in a row until the name is locked, and for how long at first; each further lock is twice as long. */
 const triesBeforeLock = 5;
@@ -34,7 +35,7 @@ export async function setPin(access: Access, personId: string, pin: string): Pro
     if (!person) {
       const isMember = await Membership.query(trx).findOne({ estateId: access.estateId, personId });
       if (!isMember) throw new Missing();
-      throw new Unusable('notCrewOnly', 'A PIN is for crew without another role here or elsewhere. This person signs in with e-mail and password.');
+      throw new Unusable('notCrewOnly', say('notCrewOnly'));
     }
     await CrewPin.query(trx).insert({ estateId: access.estateId, personId, pinHash, setBy: access.personId, setAt: new Date(), failures: 0, lockedUntil: null }).onConflict(['estateId', 'personId']).merge();
     await writeAudit(trx, access, { action: 'crew.setPin', subjectType: 'person', subjectId: personId, subjectName: person.name });
@@ -49,8 +50,8 @@ export async function signInWithPin({ code, personId, pin }: { code: string; per
   const fits = await passwordMatches(isCrew ? (counted?.pinHash ?? null) : null, pin);
   if (!fits || !counted) {
     const locked = await CrewPin.query().findOne({ estateId, personId }).where('lockedUntil', '>', now);
-    if (locked) throw new TooMuch('pinLocked', `Too many wrong PINs for this name. Wait until ${locked.lockedUntil!.toISOString().slice(11, 16)} UTC, or ask the manager for a new PIN.`, { until: locked.lockedUntil!.toISOString() });
-    throw new NotSignedIn('Name and PIN do not fit together.');
+    if (locked) throw new TooMuch('pinLocked', say('pinLocked', { time: locked.lockedUntil!.toISOString().slice(11, 16) }), { until: locked.lockedUntil!.toISOString() });
+    throw new NotSignedIn(say('wrongPin'));
   }
   await CrewPin.query().where({ estateId, personId }).patch({ failures: 0, lockedUntil: null });
   return { personId };

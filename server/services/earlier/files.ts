@@ -16,6 +16,7 @@ import { StoredFile } from '../../models/StoredFile.ts';
 import { fileStore } from '../../storage/fileStore.ts';
 import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { readAgainst, readRaw, readStoredTable, withoutKnown, type ReadTable } from './readTable.ts';
+import { say } from '../../sentences/say.ts';
 
 const shownRefused = 60;
 const shownFiles = 60;
@@ -25,7 +26,7 @@ export async function receiveEarlierFile(access: Access, uploads: readonly Uploa
   const { estateId, personId } = access;
   try {
     const [upload] = uploads;
-    if (!upload || uploads.length !== 1) throw new Unusable('oneFile', 'Send one file at a time, in the field "files".');
+    if (!upload || uploads.length !== 1) throw new Unusable('oneFile', say('oneFile'));
     const raw = await readRaw(upload.path, upload.name);
     const { signature } = (await readAgainst(estateId, raw, { answers: {}, now })).understood;
     const alike = signature === '' ? undefined : await EarlierFile.query().where({ estateId, signature, state: 'stored' }).orderBy('storedAt', 'desc').first();
@@ -62,8 +63,8 @@ export async function answerEarlierFile(access: Access, fileId: string, answers:
   const { understood } = await readStoredTable(access.estateId, record, { answers: { ...record.answers, ...answers }, now });
   for (const [key, value] of Object.entries(answers)) {
     const question = understood.questions.find((each) => each.key === key);
-    if (!question) throw new Unusable('notAsked', `"${key}" is not asked about ${record.fileName}.`);
-    if (question.answer !== value) throw new Unusable('notOffered', `"${value}" is no answer to "${key}" about ${record.fileName}. ${question.choices.length === 0 ? 'Give a day up to today, as YYYY-MM-DD.' : `Choose from: ${question.choices.map((choice) => choice.label ?? choice.value).join(', ')}.`}`);
+    if (!question) throw new Unusable('notAsked', say('notAsked', { key, file: record.fileName }));
+    if (question.answer !== value) throw new Unusable('notOffered', question.choices.length === 0 ? say('notADay', { value, file: record.fileName }) : say('notOffered', { value, key, choices: question.choices.map((choice) => choice.label ?? choice.value).join(', ') }));
   }
   await EarlierFile.query().where({ estateId: access.estateId, id: fileId }).patch({ answers: { ...record.answers, ...answers } });
   return viewEarlierFile(access, fileId, now);
@@ -80,8 +81,8 @@ export async function dismissEarlierFile(access: Access, fileId: string): Promis
 /** A table of which nothing is stored yet. */
 export async function openEarlierFile(access: Access, fileId: string): Promise<EarlierFile> {
   const record = await EarlierFile.query().findOne({ estateId: access.estateId, id: fileId }).throwIfNotFound();
-  if (record.state === 'stored') throw new Clash('stored', `The readings of ${record.fileName} are stored. Take them back first, with a reason, to read it otherwise.`);
-  if (record.state !== 'asks') throw new Clash(record.state, `${record.fileName} was ${record.state === 'dismissed' ? 'put aside' : 'taken back'}. Send it again to use it.`);
+  if (record.state === 'stored') throw new Clash('stored', say('readingsStored', { file: record.fileName }));
+  if (record.state !== 'asks') throw new Clash(record.state, say(record.state === 'dismissed' ? 'filePutAside' : 'fileTakenBack', { file: record.fileName }));
   return record;
 }
 

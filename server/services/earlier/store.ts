@@ -18,6 +18,7 @@ import { Season } from '../../models/Season.ts';
 import { StoredFile } from '../../models/StoredFile.ts';
 import { openEarlierFile, viewEarlierFile } from './files.ts';
 import { readStoredTable, withoutKnown, type ReadTable } from './readTable.ts';
+import { say } from '../../sentences/say.ts';
 
 /** PostgreSQL takes 65 535 values in one statement. */
 const rowsAtOnce = 500;
@@ -40,7 +41,7 @@ export async function storeEarlierFile(access: Access, fileId: string, { leaveOu
     const locked = await EarlierFile.query(trx).findOne({ estateId, id: fileId }).forUpdate().throwIfNotFound();
     if (locked.state !== 'asks') return;
     const entries = await withoutKnown(estateId, table.understood.entries, { timeZone: table.timeZone, trx });
-    if (entries.length === 0) throw new Unusable('allKnown', `All readings of ${record.fileName} are here already: the same vines, measures, days and values. There is nothing to store; put it aside.`);
+    if (entries.length === 0) throw new Unusable('allKnown', say('allKnown', { file: record.fileName }));
     const seasons = await Season.query(trx).where({ estateId });
     const made = await makeSeasons(trx, access, { days: entries.map(({ day }) => day), seasons, now });
     const rows = await rowsOf(trx, access, entries, { record, table, seasons: [...seasons, ...made], now });
@@ -54,11 +55,11 @@ export async function storeEarlierFile(access: Access, fileId: string, { leaveOu
 
 function refuseUnready({ fileName }: EarlierFile, { understood }: ReadTable, leaveOut: number): void {
   const open = understood.questions.filter(({ answer }) => answer === null);
-  if (open.length > 0) throw new Clash('questionsOpen', `${open.length === 1 ? 'A question' : `${open.length} questions`} about ${fileName} ${open.length === 1 ? 'is' : 'are'} still open. Nothing is stored before.`);
+  if (open.length > 0) throw new Clash('questionsOpen', say('questionsOpen', { n: open.length, file: fileName }));
   const { refused, entries } = understood;
-  if (entries.length === 0) throw new Unusable('noReadings', `${fileName} gives no reading for a vine of this estate${refused[0] ? `; row ${refused[0].line} is the first that cannot be used` : ''}. Put it aside, or send the right file.`);
-  if (entries.length > mostReadings) throw new Unusable('tooManyReadings', `${fileName} gives ${entries.length} readings; ${mostReadings} is the most at once. Divide it, such as into one file a season.`);
-  if (leaveOut !== refused.length) throw new Clash('linesRefused', `${refused.length} ${refused.length === 1 ? 'part' : 'parts'} of ${fileName} cannot be used, first in row ${refused[0]?.line ?? 0}. Nothing is stored: mend the file and send it again, or confirm that ${refused.length} ${refused.length === 1 ? 'is' : 'are'} left out.`, { refused: refused.slice(0, 20) });
+  if (entries.length === 0) throw new Unusable('noReadings', refused[0] ? say('noReadingsSince', { file: fileName, line: refused[0].line }) : say('noReadings', { file: fileName }));
+  if (entries.length > mostReadings) throw new Unusable('tooManyReadings', say('tooManyReadings', { file: fileName, count: entries.length, most: mostReadings }));
+  if (leaveOut !== refused.length) throw new Clash('linesRefused', say('linesRefused', { n: refused.length, file: fileName, line: refused[0]?.line ?? 0 }), { refused: refused.slice(0, 20) });
 }
 
 /** Seasons that the days of the table need and the estate has not; one that is over is made closed. */

@@ -14,6 +14,7 @@ import { requireOverBlocks } from './receive.ts';
 import { withSource } from './source.ts';
 import { findRows, takeRows } from './takeRows.ts';
 import { questionsOf, viewImport } from './view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Answers that change how the file itself is read. The others only say what to do with it. */
 const readerAnswers = ['reference', 'projectionText', 'placement', 'noData', 'sourceLayer', 'xColumn', 'yColumn', 'swapAxes', 'decimalMark'] as const satisfies (keyof ImportAnswers)[];
@@ -46,9 +47,9 @@ export async function answerImport(access: Access, importId: string, answers: Im
 export async function openImport(access: Access, importId: string, trx?: Transaction): Promise<FileImport> {
   const query = FileImport.query(trx).findOne({ estateId: access.estateId, id: importId }).whereNull('retiredAt').throwIfNotFound();
   const record = await (trx ? query.forUpdate() : query);
-  if (record.fileId === null) throw new Clash('importRefused', `${record.fileName} was refused and not kept. Send a corrected file.`);
-  if (record.state === 'done') throw new Clash('importDone', `${record.fileName} has been taken over already. Send the file again to use it in another way.`);
-  if (record.state === 'ready' && record.answers.purpose !== 'boundary' && (await isBeingPlaced(record, trx))) throw new Clash('importPlacing', `${record.fileName} is being placed. Wait until that is done.`);
+  if (record.fileId === null) throw new Clash('importRefused', say('importRefused', { file: record.fileName }));
+  if (record.state === 'done') throw new Clash('importDone', say('importDoneAlready', { file: record.fileName }));
+  if (record.state === 'ready' && record.answers.purpose !== 'boundary' && (await isBeingPlaced(record, trx))) throw new Clash('importPlacing', say('importPlacing', { file: record.fileName }));
   return record;
 }
 
@@ -70,8 +71,8 @@ function requireOffered(answers: ImportAnswers, questions: readonly ImportQuesti
   for (const code of Object.keys(answers)) {
     const question = questions.find((each) => each.code === code);
     if (!question || question.answered) continue;
-    if (question.reason !== null) throw new Unusable('answerNotUsable', `This answer to "${code}" does not settle the question: ${question.reason}`);
-    throw new Unusable('answerNotOffered', `"${String(answers[code as keyof ImportAnswers])}" is no answer to "${code}". Choose from: ${question.choices.map((choice) => String(choice.value)).join(', ') || 'nothing, the file has none'}.`);
+    if (question.reason !== null) throw new Unusable('answerNotUsable', say('answerNotUsable', { code, reason: question.reason }));
+    throw new Unusable('answerNotOffered', say('answerNotOffered', { answer: String(answers[code as keyof ImportAnswers]), code, choices: question.choices.map((choice) => String(choice.value)).join(', ') || say('noChoices') }));
   }
 }
 

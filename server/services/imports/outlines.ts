@@ -8,6 +8,7 @@ import { FileImport } from '../../models/FileImport.ts';
 import type { SourceFile } from '../../placing/placed.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { insertBlock } from '../blocks/change.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Outlines of a boundary file, each with what it would be as a block. */
 export function readOutlines(source: SourceFile): Promise<OfferedOutline[]> {
@@ -18,8 +19,8 @@ export function readOutlines(source: SourceFile): Promise<OfferedOutline[]> {
 export async function takeOutlines(access: Access, importId: string, taken: OutlinesTaken, now: Date): Promise<{ id: string; name: string; boundary: MultiPolygon | OfferedOutline['boundary'] }[]> {
   return FileImport.transaction(async (trx) => {
     const record = await FileImport.query(trx).findOne({ estateId: access.estateId, id: importId }).whereNull('retiredAt').forUpdate().throwIfNotFound();
-    if (record.state === 'done') throw new Clash('importDone', `${record.fileName} has been taken over already.`);
-    if (record.state !== 'ready' || record.answers.purpose !== 'boundary') throw new Clash('notOutlines', `${record.fileName} offers no outlines yet. Answer its questions first.`);
+    if (record.state === 'done') throw new Clash('importDone', say('importDone', { file: record.fileName }));
+    if (record.state !== 'ready' || record.answers.purpose !== 'boundary') throw new Clash('notOutlines', say('notOutlines', { file: record.fileName }));
     const made = [];
     for (const { outline, repaired, ...facts } of taken.blocks) {
       const boundary = boundaryOf(record, { outline, repaired });
@@ -35,8 +36,8 @@ export async function takeOutlines(access: Access, importId: string, taken: Outl
 
 function boundaryOf(record: FileImport, { outline, repaired }: { outline: number; repaired: boolean }): OfferedOutline['boundary'] {
   const offered = record.understood.outlines.find((each) => each.index === outline);
-  if (!offered) throw new Unusable('noSuchOutline', `${record.fileName} has no outline ${outline}.`);
+  if (!offered) throw new Unusable('noSuchOutline', say('noSuchOutline', { file: record.fileName, outline }));
   if (!repaired && offered.problem === null) return offered.boundary;
   if (repaired && offered.repair !== null) return offered.repair.boundary;
-  throw new Unusable(offered.problem?.code ?? 'noRepair', offered.problem?.text ?? `Outline ${outline} needs no repair.`, offered.place ? { place: offered.place } : {});
+  throw new Unusable(offered.problem?.code ?? 'noRepair', offered.problem?.text ?? say('noRepair', { outline }), offered.place ? { place: offered.place } : {});
 }

@@ -16,6 +16,7 @@ import { runCompute } from '../../workers/computePool.ts';
 import { withCompanions } from './companions.ts';
 import { viewsOf } from './view.ts';
 import { blocksUnder, estatePlace } from './whereabouts.ts';
+import { say } from '../../sentences/say.ts';
 
 const longestName = 255;
 
@@ -25,7 +26,7 @@ const longestName = 255;
  */
 export async function receiveFiles(access: Access, uploads: readonly Upload[]): Promise<ImportView[]> {
   try {
-    if (uploads.length === 0) throw new Unusable('noFiles', 'No file was sent. Send files in the multipart field "files".');
+    if (uploads.length === 0) throw new Unusable('noFiles', say('noFiles'));
     const estateLonLat = await estatePlace(access.estateId);
     const records: FileImport[] = [];
     for (const { upload, companions } of await withCompanions(uploads)) records.push(await receiveOne(access, { upload, companions, estateLonLat }));

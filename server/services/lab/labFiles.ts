@@ -14,12 +14,13 @@ import { fileStore } from '../../storage/fileStore.ts';
 import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { surroundings } from './surroundings.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Takes a laboratory's file in: it is read and kept, and no result is stored yet. A file that cannot be read is not kept. */
 export async function receiveLabFile(access: Access, uploads: readonly Upload[], now: Date): Promise<LabFileView> {
   try {
     const [upload] = uploads;
-    if (!upload || uploads.length !== 1) throw new Unusable('oneFile', 'Send one file at a time, in the field "files".');
+    if (!upload || uploads.length !== 1) throw new Unusable('oneFile', say('oneFile'));
     const raw = await runCompute<RawLabFile>('labFile', { path: upload.path, fileName: upload.name }, { lane: 'quick' });
     const first = understandLabFile(raw, await surroundings(access, now), {});
     const mapping = await knownMapping(access.estateId, first.signature);
@@ -60,8 +61,8 @@ export async function answerLabFile(access: Access, fileId: string, answers: Lab
   const understood = (await read(access, record, { answers: record.answers, now })).understood;
   for (const [key, value] of Object.entries(answers)) {
     const question = understood.questions.find((each) => each.key === key);
-    if (!question) throw new Unusable('notAsked', `"${key}" is not asked about ${record.fileName}.`);
-    if (!question.choices.some((choice) => choice.value === value)) throw new Unusable('notOffered', `"${value}" is no answer to "${key}". Choose from: ${question.choices.map((choice) => choice.label ?? choice.value).join(', ')}.`);
+    if (!question) throw new Unusable('notAsked', say('notAsked', { key, file: record.fileName }));
+    if (!question.choices.some((choice) => choice.value === value)) throw new Unusable('notOffered', say('notOffered', { value, key, choices: question.choices.map((choice) => choice.label ?? choice.value).join(', ') }));
   }
   await LabFile.query().where({ estateId: access.estateId, id: fileId }).patch({ answers: { ...record.answers, ...answers } });
   return viewLabFile(access, fileId, now);
@@ -77,8 +78,8 @@ export async function dismissLabFile(access: Access, fileId: string): Promise<vo
 
 export async function openFile(access: Access, fileId: string): Promise<LabFile> {
   const record = await LabFile.query().findOne({ estateId: access.estateId, id: fileId }).throwIfNotFound();
-  if (record.state === 'stored') throw new Clash('stored', `The results of ${record.fileName} are stored. Correct single figures in the grid, or send a new file.`);
-  if (record.state === 'dismissed') throw new Clash('dismissed', `${record.fileName} was put aside. Send it again to use it.`);
+  if (record.state === 'stored') throw new Clash('stored', say('resultsStoredBefore', { file: record.fileName }));
+  if (record.state === 'dismissed') throw new Clash('dismissed', say('filePutAside', { file: record.fileName }));
   return record;
 }
 

@@ -5,6 +5,7 @@ import type { Access } from '../../access/access.ts';
 import { Clash, Missing } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
+import { say } from '../../sentences/say.ts';
 
 /**
  * Marks results as checked or final, or takes them back to provisional, with who and when. What somebody proposed to
@@ -14,8 +15,8 @@ export async function setResultState(access: Access, { resultIds, state }: z.inf
   const { estateId, personId } = access;
   await Reading.transaction(async (trx) => {
     const rows = await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('id', resultIds).forUpdate();
-    if (rows.length !== new Set(resultIds).size) throw new Missing('Some of these results are not results of the lab in this estate.');
-    if (state === 'final' && rows.some((row) => row.exclusionProposal !== null && row.excludedReason === null)) throw new Clash('proposed', 'Somebody proposed to leave one of these results out. Decide that first.');
+    if (rows.length !== new Set(resultIds).size) throw new Missing(say('unknownResults'));
+    if (state === 'final' && rows.some((row) => row.exclusionProposal !== null && row.excludedReason === null)) throw new Clash('proposed', say('exclusionProposed'));
     await Reading.query(trx).where({ estateId }).whereIn('id', resultIds).patch({ state, stateBy: personId, stateAt: now });
     const before = Object.fromEntries(['provisional', 'checked', 'final'].map((each) => [each, rows.filter((row) => row.state === each).length]));
     await writeAudit(trx, access, { action: 'lab.state', subjectType: 'results', subjectId: resultIds[0]!, before, after: { state, count: rows.length, resultIds } });
@@ -31,7 +32,7 @@ export async function excludeResult(access: Access, resultId: string, reason: st
   const decides = may(access.roles, 'outliers.exclude');
   return Reading.transaction(async (trx) => {
     const row = await Reading.query(trx).findOne({ estateId, id: resultId, source: 'lab' }).forUpdate().throwIfNotFound();
-    if (!decides && row.excludedReason !== null) throw new Clash('decided', 'This result was left out by somebody who decides that. Ask them to take it in again.');
+    if (!decides && row.excludedReason !== null) throw new Clash('decided', say('exclusionDecided'));
     const change = decides
       ? { excludedReason: reason, excludedBy: reason === null ? null : personId, exclusionProposal: null }
       : { exclusionProposal: reason === null ? null : { reason, by: personId, at: now.toISOString() } };

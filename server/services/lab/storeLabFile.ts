@@ -12,6 +12,7 @@ import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from '../bags/bagContext.ts';
 import { seasonFinder } from '../bags/labels.ts';
 import { openFile, read, viewLabFile } from './labFiles.ts';
+import { say } from '../../sentences/say.ts';
 
 /** PostgreSQL takes 65 535 values in one statement. */
 const rowsAtOnce = 500;
@@ -25,11 +26,11 @@ export async function storeLabFile(access: Access, fileId: string, input: z.infe
   const record = await openFile(access, fileId);
   const { understood } = await read(access, record, { answers: record.answers, now });
   const open = understood.questions.filter(({ answer }) => answer === null);
-  if (open.length > 0) throw new Clash('questionsOpen', `${open.length === 1 ? 'A question' : `${open.length} questions`} about ${record.fileName} ${open.length === 1 ? 'is' : 'are'} still open. Nothing is stored before.`);
-  if (understood.entries.length === 0) throw new Unusable('noResults', `${record.fileName} gives no result for a bag of this estate. Put it aside, or send the right file.`);
+  if (open.length > 0) throw new Clash('questionsOpen', say('questionsOpen', { n: open.length, file: record.fileName }));
+  if (understood.entries.length === 0) throw new Unusable('noResults', say('noResults', { file: record.fileName }));
   await LabFile.transaction(async (trx) => {
     const locked = await LabFile.query(trx).findOne({ estateId, id: fileId }).forUpdate().throwIfNotFound();
-    if (locked.state !== 'asks') throw new Clash('stored', `The results of ${record.fileName} are stored already.`);
+    if (locked.state !== 'asks') throw new Clash('stored', say('resultsStored', { file: record.fileName }));
     const rows = await rowsOf(access, understood.entries, { trx, record, input, now, replace: record.answers.again === 'replace' });
     for (let from = 0; from < rows.length; from += rowsAtOnce) await Reading.query(trx).insert(rows.slice(from, from + rowsAtOnce));
     const answers = Object.fromEntries(understood.questions.flatMap(({ key, answer }) => (answer !== null && isRemembered(key) ? [[key, answer]] : [])));
@@ -57,7 +58,7 @@ async function rowsOf(access: Access, entries: readonly LabEntry[], { trx, recor
   const replaced = new Set<string>();
   return entries.map((entry) => {
     const bag = bags.find(({ code }) => code === entry.code);
-    if (!bag) throw new Clash('bagGone', `The bag ${entry.code} changed its label meanwhile. Look at the file again.`);
+    if (!bag) throw new Clash('bagGone', say('bagGone', { code: entry.code }));
     const former = before.find((reading) => reading.bagId === bag.id && reading.measureCode === entry.measure && !replaced.has(reading.id));
     if (former) replaced.add(former.id);
     return {

@@ -8,6 +8,7 @@ import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
 import { Relief } from '../../models/Relief.ts';
 import { findBlock } from '../blocks/view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Cells of a layer on a block as they are stored, with the grid they lie on. */
 export async function readCells(access: Access, layerId: string, blockId: string): Promise<{ bytes: Buffer; grid: CellsGrid }> {
@@ -15,7 +16,7 @@ export async function readCells(access: Access, layerId: string, blockId: string
   const block = await findBlock(access, blockId);
   const here = await BlockLayer.query().findOne({ estateId: access.estateId, layerId, blockId }).throwIfNotFound();
   const { key, epsg, x0, y0, cellSizeM, cols, rows } = defineGrid(block.boundary.coordinates as unknown as MultiPolygonLonLat, block.cellSizeM);
-  if (here.gridKey !== key) throw new Clash('layerStale', `${layer.name} was made for an older outline of ${block.name} and is being placed again. Try again in a moment.`);
+  if (here.gridKey !== key) throw new Clash('layerStale', say('layerComesAgain', { layer: layer.name, block: block.name }));
   return { bytes: here.cells, grid: { key, epsg, x0, y0, cellSizeM, cols, rows, cornersLonLat: cornersOf({ epsg, x0, y0, cellSizeM, cols, rows }) } };
 }
 

@@ -7,6 +7,7 @@ import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
 import { Person } from '../../models/Person.ts';
 import { storable } from '../../models/storable.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Name, unit, day and legend; never the values. */
 export async function changeLayer(access: Access, layerId: string, change: LayerChange): Promise<void> {
@@ -25,7 +26,7 @@ export async function overrideLayer(access: Access, layerId: string, { blockId, 
   await BlockLayer.transaction(async (trx) => {
     const layer = await Layer.query(trx).findOne({ estateId: access.estateId, id: layerId }).whereNull('retiredAt').throwIfNotFound();
     const here = await BlockLayer.query(trx).findOne({ estateId: access.estateId, layerId, blockId }).forUpdate().throwIfNotFound();
-    if (!here.findings.some((finding) => finding.severity === 'red')) throw new Unusable('nothingRed', `${layer.name} has no finding that keeps it from being used here.`);
+    if (!here.findings.some((finding) => finding.severity === 'red')) throw new Unusable('nothingRed', say('nothingRed', { layer: layer.name }));
     const person = await Person.query(trx).findById(access.personId).throwIfNotFound();
     await BlockLayer.query(trx).where({ estateId: access.estateId, layerId, blockId }).patch(storable({ override: { personId: person.id, by: person.name, reason, at: now.toISOString() }, findings: here.findings.filter(({ code }) => code !== 'overrideLapsed') }));
     await writeAudit(trx, access, { action: 'layer.override', subjectType: 'layer', subjectId: layerId, subjectName: layer.name, after: { blockId, findings: here.findings.filter((finding) => finding.severity === 'red').map((finding) => finding.code) }, reason });
@@ -56,5 +57,5 @@ async function redate(access: Access, layerId: string, measuredOn: string | null
 function requireSameClasses(layer: Layer, values: readonly number[]): void {
   const known = (layer.classes ?? []).map((entry) => entry.value);
   const same = known.length === values.length && known.every((value) => values.includes(value)) && new Set(values).size === values.length;
-  if (!same) throw new Unusable('otherClasses', `${layer.name} has the classes ${known.join(', ') || '(none)'}; name these and no others.`);
+  if (!same) throw new Unusable('otherClasses', say('otherClasses', { layer: layer.name, classes: known.join(', ') || '–' }));
 }

@@ -8,6 +8,7 @@ import { FileImport } from '../../models/FileImport.ts';
 import { Job } from '../../models/Job.ts';
 import { Layer } from '../../models/Layer.ts';
 import { storable } from '../../models/storable.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Readings of a layer that were set aside on a block, where they were taken. */
 export async function readAside(access: Access, layerId: string, blockId: string): Promise<AsideReading[]> {
@@ -22,9 +23,9 @@ export async function changeCleaning(access: Access, layerId: string, { taken }:
   return Layer.transaction(async (trx) => {
     const layer = await Layer.query(trx).findOne({ estateId, id: layerId }).whereNull('retiredAt').forUpdate().throwIfNotFound();
     const surveys = await BlockLayer.query(trx).where({ estateId, layerId }).whereNotNull('survey').resultSize();
-    if (layer.importId === null || surveys === 0) throw new Unusable('noPoints', `${layer.name} is not made of points; nothing was set aside.`);
+    if (layer.importId === null || surveys === 0) throw new Unusable('noPoints', say('noPoints', { layer: layer.name }));
     const open = await Job.query(trx).where({ estateId, subjectType: 'layer', subjectId: layerId }).whereIn('state', ['queued', 'running']).resultSize();
-    if (open > 0) throw new Clash('importPlacing', `${layer.name} is being made anew already. Wait until that is done.`);
+    if (open > 0) throw new Clash('importPlacing', say('layerMadeAnew', { layer: layer.name }));
     const record = await FileImport.query(trx).findOne({ estateId, id: layer.importId }).forUpdate().throwIfNotFound();
     const before = record.answers.takenBack ?? [];
     const answers = { ...record.answers, takenBack: taken };

@@ -13,6 +13,7 @@ import { pickStops } from './pickStops.ts';
 import { usedFactors } from './usedFactors.ts';
 import { summariseLot, withoutZone, type LotShare } from './summariseLot.ts';
 import { boardConfidence, figureOf } from './zoneOutlook.ts';
+import { say } from '../../sentences/say.ts';
 
 /**
  * The lots of a scenario, every zone with what is free of it, and the tanks. Without a scenario: the live one of the
@@ -56,7 +57,7 @@ export async function findScenario(access: Access, options: { scenarioId: string
   const found = options.scenarioId
     ? await query.findOne({ 'scenarios.id': options.scenarioId })
     : await query.where({ isLive: true }).join('seasons', 'seasons.id', 'scenarios.seasonId').orderByRaw('(seasons.starts_on <= ?::date and seasons.ends_on >= ?::date) desc, seasons.starts_on desc', [options.today, options.today]).select('scenarios.*').first();
-  if (!found) throw new Missing('No lots are kept for this season yet. Make the season first.');
+  if (!found) throw new Missing(say('noSeasonLots'));
   return found;
 }
 

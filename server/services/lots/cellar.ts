@@ -11,6 +11,7 @@ import { Lot } from '../../models/Lot.ts';
 import { Person } from '../../models/Person.ts';
 import { factorCases, keyOf, learnedOf } from './usedFactors.ts';
 import { assumedGrowth, assumedLosses } from './zoneOutlook.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Keeps what the cellar measured of a lot. The entry before stays in the table and no longer counts. */
 export async function enterCellarResult(access: Access, lotId: string, input: z.infer<typeof newCellarResult>, now: Date): Promise<{ id: string }> {
@@ -57,7 +58,7 @@ function assumedOf(kind: FactorKind, about: string): number | null {
 
 export async function switchFactor(access: Access, input: z.infer<typeof factorSwitch>, now: Date): Promise<void> {
   const found = (await listFactors(access)).find(({ kind, about }) => kind === input.kind && about === input.about);
-  if (input.isOn && (found === undefined || found.n < LOTS_NEEDED)) throw new Unusable('fewLots', `This factor rests on ${found?.n ?? 0} lots; ${LOTS_NEEDED} are needed before it is used.`);
+  if (input.isOn && (found === undefined || found.n < LOTS_NEEDED)) throw new Unusable('fewLots', say('fewLots', { n: found?.n ?? 0, least: LOTS_NEEDED }));
   await FactorSwitch.transaction(async (trx) => {
     await FactorSwitch.query(trx).insert({ estateId: access.estateId, kind: input.kind, about: input.about, isOn: input.isOn, setBy: access.personId, setAt: now }).onConflict(['estateId', 'kind', 'about']).merge(['isOn', 'setBy', 'setAt']);
     await writeAudit(trx, access, { action: 'factors.switch', subjectType: 'factor', subjectId: access.estateId, subjectName: `${input.kind} ${input.about}`, before: { isOn: found?.isOn ?? false }, after: { isOn: input.isOn, n: found?.n ?? 0, mean: found?.mean ?? null } });

@@ -18,6 +18,7 @@ import { findScenario } from './board.ts';
 import { boardOfLot, keepDecision } from './decisions.ts';
 import { runsOf } from './boardGround.ts';
 import { requireNoPickStop } from './pickStops.ts';
+import { say } from '../../sentences/say.ts';
 
 export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
   const scenario = await findScenario(access, { scenarioId: input.scenarioId, today });
@@ -59,10 +60,10 @@ export async function moveZone(access: Access, input: z.infer<typeof zoneMove>):
   await Lot.transaction(async (trx) => {
     const from = await lockLot(trx, access, input.fromLotId, input.fromVersion);
     const to = await lockLot(trx, access, input.toLotId, input.toVersion);
-    if (from.scenarioId !== to.scenarioId) throw new Unusable('otherScenario', 'These lots belong to different what-ifs. Move zones inside one.');
+    if (from.scenarioId !== to.scenarioId) throw new Unusable('otherScenario', say('otherScenario'));
     [from, to].forEach(requireDraft);
     const parts = await LotPart.query(trx).where({ estateId: access.estateId, lotId: from.id, zoneId: input.zoneId });
-    if (parts.length === 0) throw new Unusable('notInLot', `The lot "${from.name}" holds nothing of this zone.`);
+    if (parts.length === 0) throw new Unusable('notInLot', say('notInLot', { lot: from.name }));
     await LotPart.query(trx).where({ estateId: access.estateId }).whereIn('id', parts.map(({ id }) => id)).patch({ lotId: to.id });
     await from.$query(trx).patch({ version: from.version + 1 });
     await to.$query(trx).patch({ version: to.version + 1 });
@@ -74,14 +75,14 @@ export async function moveZone(access: Access, input: z.infer<typeof zoneMove>):
 export async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }): Promise<void> {
   const zone = await Zone.query(trx).findOne({ estateId: access.estateId, id: part.zoneId }).select('id', 'zoningId', 'number', 'name').throwIfNotFound();
   const zoning = await Zoning.query(trx).findOne({ estateId: access.estateId, id: zone.zoningId }).throwIfNotFound();
-  if (zoning.state !== 'live') throw new Unusable('zoneNotLive', `Zone ${zone.number} belongs to zones that are not in force. Choose it from the zones in force.`);
+  if (zoning.state !== 'live') throw new Unusable('zoneNotLive', say('zoneNotLive', { number: zone.number }));
   const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
   const wanted = part.rowIds === null ? null : new Set(part.rowIds);
   const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning))
     .filter((run) => run.label === zone.number)
     .map((run) => ({ rowId: ground.stored[run.rowIndex]!.id, from: run.fromOrdinal, to: run.toOrdinal }))
     .filter((run) => wanted === null || wanted.has(run.rowId));
-  if (runs.length === 0) throw new Unusable('emptyPart', `Zone ${zone.number} of ${ground.block.name} has no vines in these rows. Choose rows that cross the zone.`);
+  if (runs.length === 0) throw new Unusable('emptyPart', say('emptyPart', { number: zone.number, block: ground.block.name }));
   await requireFree(trx, access, lot, { runs, what: `${ground.block.name} zone ${zone.number}` });
   const row = await LotPart.query(trx).insert({ estateId: access.estateId, lotId: lot.id, blockId: zoning.blockId, zoneId: zone.id, zoneNumber: zone.number, zoneName: zone.name });
   await LotRowRun.query(trx).insert(runs.map((run) => ({ estateId: access.estateId, scenarioId: lot.scenarioId, lotPartId: row.id, rowId: run.rowId, vines: vineRange(run.from, run.to) as unknown as string })));
@@ -89,8 +90,8 @@ export async function addPart(trx: Transaction, access: Access, lot: Lot, part: 
 
 /** Zones of a confirmed lot are what its notice says; those of a picked one are history. */
 function requireDraft({ name, state }: Lot): void {
-  if (state === 'confirmed') throw new Unusable('lotStands', `The lot "${name}" is confirmed, so it stands as it is. Open it again first; its notice is void from then on.`);
-  if (state === 'picked') throw new Unusable('lotStands', `The lot "${name}" has been picked, so it stands as it was.`);
+  if (state === 'confirmed') throw new Unusable('lotStands', say('lotConfirmed', { lot: name }));
+  if (state === 'picked') throw new Unusable('lotStands', say('lotPicked', { lot: name }));
 }
 
 async function requireFree(trx: Transaction, access: Access, lot: Lot, part: { runs: { rowId: string; from: number; to: number }[]; what: string }): Promise<void> {
@@ -98,17 +99,17 @@ async function requireFree(trx: Transaction, access: Access, lot: Lot, part: { r
   const clash = taken.find((other) => other.lotId !== lot.id && part.runs.some((run) => run.rowId === other.rowId && run.from <= other.to && other.from <= run.to));
   if (!clash) return;
   const other = await Lot.query(trx).findById(clash.lotId).throwIfNotFound();
-  throw new Clash('vineTwice', `Vines of ${part.what} are in the lot "${other.name}" already. Take them out there first.`);
+  throw new Clash('vineTwice', say('vinesInOtherLot', { part: part.what, lot: other.name }));
 }
 
 /** Confirms a lot and its date. Whoever may only propose leaves it to another, unless nobody else can. */
 export async function confirmLot(access: Access, lotId: string, version: number, now: Date): Promise<void> {
-  if (reachOf(access.roles, 'lots.confirm') !== 'do') throw new NotAllowed('You may propose this lot; the winemaker or the owner confirms it.');
+  if (reachOf(access.roles, 'lots.confirm') !== 'do') throw new NotAllowed(say('lotOnlyProposed'));
   const shown = await boardOfLot(access, lotId, now);
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
-    if (lot.pickOn === null) throw new Unusable('noPickDate', 'Set a pick date before you confirm the lot.');
-    if ((await LotPart.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) === 0) throw new Unusable('emptyLot', 'Put at least one zone in the lot before you confirm it.');
+    if (lot.pickOn === null) throw new Unusable('noPickDate', say('noPickDate'));
+    if ((await LotPart.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) === 0) throw new Unusable('emptyLot', say('emptyLot'));
     await requireNoPickStop(trx, access, { lotId, pickOn: lot.pickOn });
     await lot.$query(trx).patch({ state: 'confirmed', confirmedBy: access.personId, confirmedAt: now, version: lot.version + 1 });
     await keepDecision(trx, access, { lotId, kind: 'confirm', shown, now });
@@ -147,6 +148,6 @@ export async function lockLot(trx: Transaction, access: Access, lotId: string, v
   const { scenarioId } = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).throwIfNotFound();
   await Scenario.query(trx).findById(scenarioId).forNoKeyUpdate();
   const lot = await Lot.query(trx).findOne({ estateId: access.estateId, id: lotId }).forUpdate().throwIfNotFound();
-  if (lot.version !== version) throw new Stale('lotChanged', `Somebody changed the lot "${lot.name}" since you read it. Load it again and repeat the step.`, { current: lot.version });
+  if (lot.version !== version) throw new Stale('lotChanged', say('lotChanged', { lot: lot.name }), { current: lot.version });
   return lot;
 }

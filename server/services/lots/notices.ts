@@ -22,6 +22,7 @@ import { lockLot } from './changeLots.ts';
 import { keepDecision, shownOf } from './decisions.ts';
 import { requireNoPickStop } from './pickStops.ts';
 import { dateWords, differencesBetween, fill, noticeText, sheetWords, withoutTonnes, withoutTonnesDifferences } from './noticeWords.ts';
+import { say } from '../../sentences/say.ts';
 
 interface Recipient {
   person: Person;
@@ -33,8 +34,8 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
   const { estateId } = access;
   const lot = await Lot.query().findOne({ estateId, id: lotId }).throwIfNotFound();
   const scenario = await Scenario.query().findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
-  if (!scenario.isLive) throw new Unusable('whatIf', 'A notice is sent from the lots in force, not from a what-if.');
-  if (lot.state === 'draft' || lot.pickOn === null) throw new Unusable('notConfirmed', `Confirm the lot "${lot.name}" and its date first; then send the notice.`);
+  if (!scenario.isLive) throw new Unusable('whatIf', say('noticeOfWhatIf'));
+  if (lot.state === 'draft' || lot.pickOn === null) throw new Unusable('notConfirmed', say('notConfirmed', { lot: lot.name }));
   const board = await lotsBoard(access, { scenarioId: scenario.id, today: await estateDay(estateId, options.now) });
   const body = bodyOf(board.lots.find((one) => one.id === lotId)!, { input, pickOn: lot.pickOn, labels: new Map(board.zones.flatMap((zone) => zone.rows.map((row) => [row.id, row.label]))), tank: board.tanks.find((tank) => tank.id === lot.tankId)?.name ?? null });
   const recipients = await recipientsOf(estateId, input.people);
@@ -85,7 +86,7 @@ async function recipientsOf(estateId: string, ids: string[]): Promise<Recipient[
   return [...new Set(ids)].map((id) => {
     const roles = rows.filter((row) => row.personId === id).map((row) => row.role);
     const person = people.find((one) => one.id === id);
-    if (!person || !may(roles, 'notices.acknowledge')) throw new Unusable('notAReader', `${person && roles.length > 0 ? person.name : 'Somebody chosen'} cannot be sent a notice in this estate. Choose people who work here.`);
+    if (!person || !may(roles, 'notices.acknowledge')) throw new Unusable('notAReader', person && roles.length > 0 ? say('notAReader', { name: person.name }) : say('notAReaderHere'));
     return { person, seesLots: may(roles, 'lots.see', 'read') };
   });
 }
@@ -146,7 +147,7 @@ export async function printNotice(access: Access, noticeId: string, options: { p
   const notice = await PickNotice.query().findOne({ estateId: access.estateId, id: noticeId }).throwIfNotFound();
   const seesLots = may(access.roles, 'lots.see', 'read');
   const isReader = (await NoticeReader.query().where({ noticeId, personId: access.personId }).resultSize()) > 0;
-  if (!seesLots && !isReader) throw new Missing('This notice is not addressed to you.');
+  if (!seesLots && !isReader) throw new Missing(say('noticeOfOthers'));
   const [person, estate] = await Promise.all([Person.query().findById(access.personId).throwIfNotFound(), Estate.query().findById(access.estateId).throwIfNotFound()]);
   const replacedBy = await replacementOf(notice);
   const body = notice.body as NoticeBody;
@@ -172,7 +173,7 @@ function stateWords({ voidAt, body }: PickNotice, how: { replacedBy: number | nu
 /** What the code on a printed notice leads to, for anybody who holds the paper: whether its number still holds, and nothing else. */
 export async function noticeState(code: string, now: Date): Promise<NoticeState> {
   const notice = await PickNotice.query().findOne({ code });
-  if (!notice) throw new Missing('No pick notice has this code. Ask whoever gave you the paper.');
+  if (!notice) throw new Missing(say('unknownNotice'));
   const estate = await Estate.query().findById(notice.estateId).throwIfNotFound();
   const { pickOn } = notice.body as NoticeBody;
   const isVoid = notice.voidAt !== null;
@@ -192,7 +193,7 @@ export async function readNotice(access: Access, noticeId: string, now: Date): P
   await PickNotice.transaction(async (trx) => {
     const notice = await PickNotice.query(trx).findOne({ estateId: access.estateId, id: noticeId }).throwIfNotFound();
     const reader = await NoticeReader.query(trx).findOne({ noticeId, personId: access.personId });
-    if (!reader) throw new Missing('This notice is not addressed to you.');
+    if (!reader) throw new Missing(say('noticeOfOthers'));
     if (reader.readAt !== null) return;
     await NoticeReader.query(trx).where({ noticeId, personId: access.personId }).patch({ readAt: now });
     await writeAudit(trx, access, { action: 'notices.read', subjectType: 'notice', subjectId: noticeId, subjectName: String(notice.number) });

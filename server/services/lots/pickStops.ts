@@ -9,6 +9,7 @@ import { Estate } from '../../models/Estate.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { Person } from '../../models/Person.ts';
 import { pickDaysAt } from '../../models/PickIntervalChange.ts';
+import { say } from '../../sentences/say.ts';
 
 /** A lot on a day, whether that day is its own already or asked for. */
 interface DatedLot {
@@ -63,9 +64,8 @@ export async function requireNoPickStop(trx: Transaction, access: Access, lot: D
   const stop = (await pickStops(access.estateId, [lot], { trx })).get(lot.lotId)?.[0];
   if (!stop) return;
   const { timeZone } = await Estate.query(trx).findById(access.estateId).throwIfNotFound();
-  const until = stop.kind === 'pick' ? stop.until : new Date(stop.until).toLocaleString('en-GB', { timeZone, dateStyle: 'medium', timeStyle: 'short' });
-  const what = stop.kind === 'pick' ? `rules out picking before ${until}` : `closes the block until ${until}`;
-  const lifters = new Intl.ListFormat('en', { type: 'disjunction' }).format((await peopleWhoMay(trx, access.estateId, 'restrictions.lift')).map(({ name }) => name));
-  const wayOut = stop.kind === 'pick' ? `only ${lifters} may put that day right, where it was typed wrong, nothing was applied, or the label allows an earlier one` : `only ${lifters} may lift the entry, with a reason, where label and local law allow it`;
-  throw new Clash('restricted', `${stop.blockName}: ${stop.product} (interval as typed: ${stop.labelInterval}) ${what}. Entered by ${stop.setBy}. Choose a later day; ${wayOut}.`, { stop, mayLift: lifters });
+  const names = (await peopleWhoMay(trx, access.estateId, 'restrictions.lift')).map(({ name }) => name);
+  const facts = { block: stop.blockName, product: stop.product, interval: stop.labelInterval, by: stop.setBy, lifters: { oneOf: names } };
+  const sentence = stop.kind === 'pick' ? say('pickTooEarly', { ...facts, until: stop.until }) : say('pickInClosedBlock', { ...facts, until: { moment: new Date(stop.until), timeZone } });
+  throw new Clash('restricted', sentence, { stop, mayLift: new Intl.ListFormat('en', { type: 'disjunction' }).format(names) });
 }

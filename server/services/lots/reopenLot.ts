@@ -10,12 +10,13 @@ import { Person } from '../../models/Person.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { lockLot } from './changeLots.ts';
 import { fill, withdrawnWords } from './noticeWords.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Makes a confirmed lot a draft again, so that its zones can change. Its notice is void from then on, and its readers are told. */
 export async function reopenLot(access: Access, lotId: string, version: number, options: { publicUrl: string; now: Date }): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
-    if (lot.state !== 'confirmed') throw new Unusable('notConfirmed', lot.state === 'picked' ? `The lot "${lot.name}" has been weighed; it stands as it was picked.` : `The lot "${lot.name}" is a draft already.`);
+    if (lot.state !== 'confirmed') throw new Unusable('notConfirmed', lot.state === 'picked' ? say('lotWeighed', { lot: lot.name }) : say('lotIsDraft', { lot: lot.name }));
     await lot.$query(trx).patch({ state: 'draft', confirmedBy: null, confirmedAt: null, version: lot.version + 1 });
     const numbers = await withdrawNotices(trx, access, { lot, ...options });
     await writeAudit(trx, access, { action: 'lots.reopen', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { pickOn: lot.pickOn, notices: numbers }, after: { state: 'draft' } });

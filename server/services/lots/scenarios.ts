@@ -7,6 +7,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { Scenario } from '../../models/Scenario.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Copies a scenario with its lots: a what-if that changes nothing live. */
 export async function copyScenario(access: Access, input: z.infer<typeof newScenario>): Promise<{ id: string }> {
@@ -38,14 +39,14 @@ export async function copyLots(trx: Transaction, access: Access, { lots, to }: {
 export async function applyScenario(access: Access, scenarioId: string): Promise<{ id: string }> {
   return Scenario.transaction(async (trx) => {
     const from = await Scenario.query(trx).findOne({ estateId: access.estateId, id: scenarioId }).throwIfNotFound();
-    if (from.isLive) throw new Unusable('isLive', 'These lots are in force already.');
+    if (from.isLive) throw new Unusable('isLive', say('scenarioIsLive'));
     const live = await Scenario.query(trx).findOne({ estateId: access.estateId, seasonId: from.seasonId, isLive: true }).forUpdate().throwIfNotFound();
     const standing = await Lot.query(trx).where({ estateId: access.estateId, scenarioId: live.id });
     const firm = standing.filter(({ state }) => state !== 'draft');
     await Lot.query(trx).where({ estateId: access.estateId, scenarioId: live.id, state: 'draft' }).delete();
     const lots = (await Lot.query(trx).where({ estateId: access.estateId, scenarioId: from.id })).filter((lot) => !firm.some(({ name }) => name === lot.name));
     const shared = await vinesShared(trx, access, { lots, firm });
-    if (shared) throw new Clash('vineTwice', `The lot "${shared.inLive}" is confirmed and holds vines of "${shared.inWhatIf}". Take them out of the what-if first; nothing was changed.`);
+    if (shared) throw new Clash('vineTwice', say('vinesInLiveLot', { inLive: shared.inLive, inWhatIf: shared.inWhatIf }));
     await copyLots(trx, access, { lots, to: live });
     await writeAudit(trx, access, { action: 'lots.applyScenario', subjectType: 'scenario', subjectId: from.id, subjectName: from.name, before: { lots: standing.map(({ name }) => name) }, after: { lots: lots.map(({ name }) => name) } });
     return { id: live.id };
@@ -73,7 +74,7 @@ async function vinesShared(trx: Transaction, access: Access, { lots, firm }: { l
 export async function deleteScenario(access: Access, scenarioId: string): Promise<void> {
   await Scenario.transaction(async (trx) => {
     const scenario = await Scenario.query(trx).findOne({ estateId: access.estateId, id: scenarioId }).throwIfNotFound();
-    if (scenario.isLive) throw new Unusable('isLive', 'The lots in force cannot be deleted as a whole. Delete the lots one by one.');
+    if (scenario.isLive) throw new Unusable('isLive', say('liveNotDeleted'));
     await scenario.$query(trx).delete();
     await writeAudit(trx, access, { action: 'lots.deleteScenario', subjectType: 'scenario', subjectId: scenarioId, subjectName: scenario.name });
   });

@@ -23,6 +23,7 @@ import { copyLots } from './scenarios.ts';
 import { mustPerTonne } from './summariseLot.ts';
 import { usedFactors } from './usedFactors.ts';
 import type { UsedFactors } from './zoneOutlook.ts';
+import { say } from '../../sentences/say.ts';
 
 const limitSeconds = 6;
 /** A part of a zone with fewer bearing vines is not worth a picker's walk. */
@@ -43,14 +44,14 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const kept = ground.lots.filter((lot) => !asked.startOver || lot.state !== 'draft');
   const zones = freeZones(ground, { kept, asked, earliest: await earliestDays(access.estateId, asked.firstDay) });
   const tanks = await freeTanks(access.estateId, { kept, asked });
-  if (zones.length === 0) throw new Unusable('nothingFree', 'Every zone is in a lot already. Ask to start over, or take zones out of their lots first.');
-  if (tanks.length === 0) throw new Unusable('noTankFree', 'No tank is free. Add tanks, or choose others.');
+  if (zones.length === 0) throw new Unusable('nothingFree', say('nothingFree'));
+  if (tanks.length === 0) throw new Unusable('noTankFree', say('noTankFree'));
   const room = await roomFrom(access, asked);
   const rules = rulesOf(asked, { factors, room });
   const answer = await runCompute<SuggestAnswer>('suggestLots', { zones: zones.map(plain), tanks: tanks.map(({ name: _name, ...tank }) => tank), rules, limitSeconds } satisfies SuggestInput, { lane: 'quick' });
   const leftOut = (placed: ReadonlySet<number>) => zones.flatMap((zone, index) => (placed.has(index) ? [] : [{ zoneId: zone.id, zone: zone.name, reason: whyLeftOut(zone, tanks, rules) }]));
-  if (answer.groupings === 0) throw new Unusable('nothingFits', 'No lot can be made within these limits, so nothing was stored. Choose larger tanks or a smaller chance of fit, give a day more room, widen the targets, or split large zones by rows.', { leftOut: leftOut(new Set()) });
-  if (answer.lots.length === 0) throw new Unusable('notFoundInTime', `No proposal was found in ${limitSeconds} seconds, so nothing was stored. Ask again with fewer tanks, fewer varieties that may meet, or narrower targets.`);
+  if (answer.groupings === 0) throw new Unusable('nothingFits', say('nothingFits'), { leftOut: leftOut(new Set()) });
+  if (answer.lots.length === 0) throw new Unusable('notFoundInTime', say('notFoundInTime', { seconds: limitSeconds }));
   const lots = answer.lots.map((lot) => ({ lot, own: lot.zones.map((index) => zones[index]!) }));
   const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: isPressed(own[0]!), earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));

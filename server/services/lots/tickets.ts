@@ -12,6 +12,7 @@ import { Person } from '../../models/Person.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { findScenario } from './board.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Kilograms by which a split may miss the net weight: rounding of bins. */
 const splitToleranceKg = 1;
@@ -26,16 +27,16 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     await oneAtATime(trx, estateId);
     const lot = await Lot.query(trx).findOne({ estateId, id: input.lotId }).forUpdate().throwIfNotFound();
     const scenario = await Scenario.query(trx).findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
-    if (!scenario.isLive) throw new Unusable('whatIf', 'A ticket belongs to a lot in force, not to a what-if.');
+    if (!scenario.isLive) throw new Unusable('whatIf', say('ticketOfWhatIf'));
     const known = await ScaleTicket.query(trx).where({ estateId }).select('id', 'ticketNo', 'corrects');
     const corrected = input.corrects === null ? null : known.find((ticket) => ticket.id === input.corrects);
-    if (corrected === undefined) throw new Unusable('noTicket', 'The ticket to correct is not in this estate.');
-    if (corrected && known.some((ticket) => ticket.corrects === corrected.id)) throw new Clash('correctedAlready', `Ticket ${corrected.ticketNo} has been corrected already. Correct its correction.`);
-    if (!corrected && known.some((ticket) => ticket.ticketNo === input.ticketNo)) throw new Clash('ticketTwice', `Ticket ${input.ticketNo} is entered already. If it was wrong, correct it.`);
+    if (corrected === undefined) throw new Unusable('noTicket', say('noTicket'));
+    if (corrected && known.some((ticket) => ticket.corrects === corrected.id)) throw new Clash('correctedAlready', say('correctedAlready', { ticketNo: corrected.ticketNo }));
+    if (!corrected && known.some((ticket) => ticket.ticketNo === input.ticketNo)) throw new Clash('ticketTwice', say('ticketTwice', { ticketNo: input.ticketNo }));
     const factor = kgPerUnit[input.unit];
     requireSplitAddsUp(input.split, (input.gross - input.tare) * factor);
     const blocks = await Block.query(trx).where({ estateId }).findByIds(input.split.map((part) => part.blockId)).select('id');
-    if (input.split.some((part) => !blocks.some((block) => block.id === part.blockId))) throw new Unusable('noBlock', 'The split names a block that is not in this estate.');
+    if (input.split.some((part) => !blocks.some((block) => block.id === part.blockId))) throw new Unusable('noBlock', say('noBlock'));
     const ticket = await ScaleTicket.query(trx).insert({ estateId, lotId: lot.id, ticketNo: input.ticketNo, grossKg: input.gross * factor, tareKg: input.tare * factor, unitTyped: input.unit, weighedAt: new Date(input.weighedAt), split: input.split, corrects: input.corrects, note: input.note, enteredBy: access.personId, enteredAt: now } as never);
     if (lot.state !== 'picked') await lot.$query(trx).patch({ state: 'picked', version: lot.version + 1 });
     await writeAudit(trx, access, { action: corrected ? 'tickets.correct' : 'tickets.enter', subjectType: 'ticket', subjectId: ticket.id, subjectName: input.ticketNo, after: input, reason: input.note || null });
@@ -66,8 +67,8 @@ async function importIn(trx: Transaction, access: Access, file: z.infer<typeof t
     questions: [...read.questions], problems: read.problems.slice(0, shownProblems), kept: 0,
   };
   if (!file.apply) return view;
-  if (read.questions.length > 0) throw new Clash('tableQuestions', 'Answer what is asked about the table first; nothing was kept.');
-  if (read.problems.length > 0 || read.tickets.length === 0) throw new Unusable('tableProblems', `${read.problems.length} lines of the table cannot be used; nothing was kept. Correct them and read it again.`);
+  if (read.questions.length > 0) throw new Clash('tableQuestions', say('tableQuestions'));
+  if (read.problems.length > 0 || read.tickets.length === 0) throw new Unusable('tableProblems', say('tableProblems', { n: read.problems.length }));
   const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time, netOnly }) => ({
     estateId, lotId, ticketNo, grossKg: gross * kgPerUnit[unit], tareKg: tare * kgPerUnit[unit], unitTyped: unit, split: [], corrects: null, enteredBy: access.personId, enteredAt: options.now,
     note: netOnly ? 'net weight only' : '',
@@ -84,7 +85,7 @@ const shownProblems = 20;
 function requireSplitAddsUp(split: readonly TicketSplit[], netKg: number): void {
   if (split.length === 0) return;
   const sum = split.reduce((total, part) => total + part.kg, 0);
-  if (Math.abs(sum - netKg) > splitToleranceKg) throw new Unusable('splitSum', `The split adds up to ${sum.toFixed(0)} kg, the net weight is ${netKg.toFixed(0)} kg. A split leaves the total as it is: change a part.`);
+  if (Math.abs(sum - netKg) > splitToleranceKg) throw new Unusable('splitSum', say('splitSum', { sum: sum.toFixed(0), netKg: netKg.toFixed(0) }));
 }
 
 /** Tickets of the season's lots, newest first, with what corrects what. */

@@ -13,6 +13,7 @@ import { Invitation } from '../../models/Invitation.ts';
 import { Membership } from '../../models/Membership.ts';
 import { Person } from '../../models/Person.ts';
 import { requireRoleGrant } from './roleGrants.ts';
+import { say } from '../../sentences/say.ts';
 
 const invitationDays = 14;
 const dueAfter = (now: Date) => new Date(now.getTime() + invitationDays * 86_400_000);
@@ -49,8 +50,8 @@ export async function resendInvitation(access: Access, invitationId: string, opt
   await Invitation.transaction(async (trx) => {
     const invitation = await Invitation.query(trx).findOne({ estateId: access.estateId, id: invitationId }).forUpdate().throwIfNotFound();
     for (const role of invitation.roles) requireRoleGrant(access, role);
-    if (invitation.acceptedAt) throw new Clash('accepted', 'This invitation has been accepted already. The person can sign in.');
-    if (invitation.revokedAt) throw new Clash('revokedInvitation', 'This invitation was taken back. Invite the person anew.');
+    if (invitation.acceptedAt) throw new Clash('accepted', say('invitationAcceptedSignIn'));
+    if (invitation.revokedAt) throw new Clash('revokedInvitation', say('invitationTakenBackAnew'));
     const { token, tokenHash } = newToken();
     await invitation.$query(trx).patch({ tokenHash, expiresAt: dueAfter(options.now) });
     await mailInvitation(trx, access, { invitation, link: `${options.publicUrl}/join/${token}` });
@@ -62,7 +63,7 @@ export async function revokeInvitation(access: Access, invitationId: string, now
   await Invitation.transaction(async (trx) => {
     const invitation = await Invitation.query(trx).findOne({ estateId: access.estateId, id: invitationId }).throwIfNotFound();
     for (const role of invitation.roles) requireRoleGrant(access, role);
-    if (invitation.acceptedAt) throw new Clash('accepted', 'This invitation has been accepted already. End the access of the person instead.');
+    if (invitation.acceptedAt) throw new Clash('accepted', say('invitationAcceptedEnd'));
     await invitation.$query(trx).patch({ revokedAt: now });
     await writeAudit(trx, access, { action: 'people.revokeInvitation', subjectType: 'invitation', subjectId: invitationId, subjectName: invitation.email });
   });
@@ -80,10 +81,10 @@ export async function acceptInvitation(answer: z.infer<typeof invitationAnswer>,
   const offer = await openInvitation(answer.token, now);
   return Invitation.transaction(async (trx) => {
     const invitation = await Invitation.query(trx).findById(offer.id).forUpdate().throwIfNotFound();
-    if (invitation.acceptedAt) throw new Clash('usedInvitation', 'This invitation has been used already. Sign in, or ask for a new one.');
+    if (invitation.acceptedAt) throw new Clash('usedInvitation', say('invitationUsed'));
     const known = await Person.query(trx).findOne({ email: invitation.email });
     if (known && !(await passwordMatches(known.passwordHash, answer.password))) {
-      throw new Unusable('wrongPassword', 'This address has an account already. Give its password to join with it.');
+      throw new Unusable('wrongPassword', say('addressHasAccount'));
     }
     const person = known ?? (await Person.query(trx).insert({ name: answer.name, email: invitation.email, passwordHash: await hashPassword(answer.password), language: answer.language }));
     await Membership.query(trx)
@@ -99,10 +100,10 @@ export async function acceptInvitation(answer: z.infer<typeof invitationAnswer>,
 
 async function openInvitation(token: string, now: Date): Promise<Invitation> {
   const invitation = await Invitation.query().findOne({ tokenHash: hashToken(token) });
-  if (!invitation) throw new Missing('This invitation link is not known. Ask for a new invitation.');
-  if (invitation.acceptedAt) throw new Clash('usedInvitation', 'This invitation has been used already. Sign in, or ask for a new one.');
-  if (invitation.revokedAt) throw new Clash('revokedInvitation', 'This invitation was taken back. Ask the person who invited you.');
-  if (invitation.expiresAt < now) throw new Clash('expiredInvitation', 'This invitation has expired. Ask for a new one.');
+  if (!invitation) throw new Missing(say('unknownInvitation'));
+  if (invitation.acceptedAt) throw new Clash('usedInvitation', say('invitationUsed'));
+  if (invitation.revokedAt) throw new Clash('revokedInvitation', say('invitationTakenBack'));
+  if (invitation.expiresAt < now) throw new Clash('expiredInvitation', say('invitationExpired'));
   return invitation;
 }
 

@@ -11,6 +11,7 @@ import { Membership } from '../../models/Membership.ts';
 import { Person } from '../../models/Person.ts';
 import { endSessions } from '../../models/SessionRecord.ts';
 import { requireRoleGrant } from './roleGrants.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Everybody who ever had access, with the roles that are open; a role past its last day is over. */
 export async function listPeople(access: Access, today: string): Promise<PersonView[]> {
@@ -63,7 +64,7 @@ async function endSessionsOfLeaver(personId: string, trx: TransactionOrKnex): Pr
 
 async function keepAnOwner(estateId: string, personId: string, trx: TransactionOrKnex): Promise<void> {
   const others = await Membership.query(trx).where({ estateId, role: 'owner' }).whereNull('endedAt').whereNull('endsOn').whereNot({ personId }).resultSize();
-  if (others === 0) throw new Clash('lastOwner', 'An estate needs at least one owner without a last day. Make somebody else owner first.');
+  if (others === 0) throw new Clash('lastOwner', say('lastOwner'));
 }
 
 function symmetricDifference(a: ReadonlySet<Role>, b: ReadonlySet<Role>): Role[] {

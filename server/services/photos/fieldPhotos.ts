@@ -17,13 +17,14 @@ import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 import { nameFor } from '../readings/readerName.ts';
 import { withoutRecords } from './pictureBytes.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Keeps a photo of a vine, freed of place and device. Sent again it is kept once; refused it leaves nothing. */
 export async function keepPhoto(access: Access, facts: unknown, uploads: readonly Upload[]): Promise<{ id: string }> {
   try {
     const input = newFieldPhoto.parse(readFacts(facts));
     const [upload, ...more] = uploads;
-    if (!upload || more.length > 0) throw new Unusable('onePhoto', 'Send one picture at a time in the field "files".');
+    if (!upload || more.length > 0) throw new Unusable('onePhoto', say('onePhoto'));
     await refuseStrange(access, input);
     if (await FieldPhoto.query().findOne({ estateId: access.estateId, id: input.id })) return { id: input.id };
     await writeFile(upload.path, withoutRecords(await readFile(upload.path)));
@@ -44,17 +45,17 @@ function readFacts(text: unknown): unknown {
   try {
     return JSON.parse(typeof text === 'string' ? text : '');
   } catch {
-    throw new Unusable('badFacts', 'Send what the photo shows as JSON in the field "facts".');
+    throw new Unusable('badFacts', say('badFacts'));
   }
 }
 
 async function refuseStrange(access: Access, { blockId, rowId, roundId }: NewFieldPhoto): Promise<void> {
   const { estateId, personId } = access;
-  if (!(await BlockRow.query().findOne({ estateId, blockId, id: rowId }))) throw new Missing('This row is not a row of a block of this estate.');
+  if (!(await BlockRow.query().findOne({ estateId, blockId, id: rowId }))) throw new Missing(say('unknownRowOfPhoto'));
   const isOwnOnly = requireReach(access, 'readings.record', 'own') === 'own';
   const round = roundId === null ? undefined : await Round.query().findOne({ estateId, id: roundId });
   const isMine = round && (!isOwnOnly || (await RoundPerson.query().findOne({ estateId, roundId: round.id, personId })));
-  if ((roundId !== null || isOwnOnly) && !isMine) throw new Missing('This round is not one of yours in this estate.');
+  if ((roundId !== null || isOwnOnly) && !isMine) throw new Missing(say('roundOfOthers'));
 }
 
 /** Photos, newest first; those who record only their own see their own. */

@@ -1,4 +1,5 @@
 import { Unusable } from '../../errors.ts';
+import { say } from '../../sentences/say.ts';
 
 const startOfImage = 0xd8;
 const startOfScan = 0xda;
@@ -13,7 +14,7 @@ const comment = 0xfe;
  * frame of JFIF (APP0). The picture itself is not touched.
  */
 export function withoutRecords(bytes: Buffer): Buffer {
-  if (bytes.length < 4 || bytes[0] !== 0xff || bytes[1] !== startOfImage) throw new Unusable('noPhoto', 'This file is no JPEG picture. Take the photo again, or save it as JPEG first.');
+  if (bytes.length < 4 || bytes[0] !== 0xff || bytes[1] !== startOfImage) throw new Unusable('noPhoto', say('noJpeg'));
   const kept: Buffer[] = [bytes.subarray(0, 2)];
   let at = 2;
   while (at + 4 <= bytes.length) {
@@ -33,4 +34,4 @@ export function withoutRecords(bytes: Buffer): Buffer {
   throw damaged();
 }
 
-const damaged = () => new Unusable('noPhoto', 'This JPEG picture is damaged: it ends before the picture begins. Take the photo again.');
+const damaged = () => new Unusable('noPhoto', say('damagedJpeg'));

@@ -12,6 +12,7 @@ import { asGeoJson } from '../../models/geometry.ts';
 import { Block } from '../../models/Block.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { say } from '../../sentences/say.ts';
 
 /** A zoned block as plans and walks take it. */
 export interface PlanGround {
@@ -34,16 +35,16 @@ export async function loadPlanGround(estateId: string, zoningId: string, draw: D
   const zoning = await Zoning.query().findOne({ estateId, id: zoningId }).throwIfNotFound();
   const ground = await loadBlockVines(estateId, zoning.blockId);
   const name = ground.block.name;
-  if (ground.vines.count === 0) throw new Unusable('noRows', `${name} has no rows yet. Enter row bearing and spacing before planning samples.`);
+  if (ground.vines.count === 0) throw new Unusable('noRows', say('noRowsToSample', { block: name }));
   const zoneRows = await Zone.query().where({ estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'colour');
-  if (zoning.labels === null || zoneRows.length === 0) throw new Unusable('noZones', `Zoning ${zoning.number} of ${name} has no zones yet. Choose a number of zones first.`);
+  if (zoning.labels === null || zoneRows.length === 0) throw new Unusable('noZones', say('noZonesToSample', { number: zoning.number, block: name }));
   const grid = gridOf(ground);
-  if (zoning.gridKey !== grid.key) throw new Unusable('zoningOutOfDate', `The outline of ${name} changed after zoning ${zoning.number} was made. Run the zoning again, then plan.`);
+  if (zoning.gridKey !== grid.key) throw new Unusable('zoningOutOfDate', say('zoningOutOfDate', { block: name, number: zoning.number }));
   const zoneOf = zonesOfVines(ground, zoning);
   const unusable = Uint8Array.from(ground.states, (state) => (state === null || state === 'sick' ? 0 : 1));
   const nearBorder = draw.borderM === 0 ? null : vinesNearBorder({ grid, labels: decodeLabels(zoning.labels) }, { ...ground.vines, zoneOfVine: zoneOf }, draw.borderM ?? undefined);
   const found = zoneRows.map(({ id, number, name: zoneName, colour }) => ({ zone: { id, number, name: zoneName, colour }, ...vinesOfZone({ ground, zoneOf, unusable, nearBorder, draw }, number) })).filter(({ bearing }) => bearing > 0);
-  if (found.length === 0) throw new Unusable('noVines', `No zone of ${name} has a vine to sample: all its vines are marked missing, replanted or off-type. Look at the marks of its vines in the block's rows, then plan.`);
+  if (found.length === 0) throw new Unusable('noVines', say('noVines', { block: name }));
   const zones = found.map(({ zone, bearing, drawable }): BasisZone => ({ ...zone, vines: bearing, eligible: drawable.length }));
   const drawable = found.flatMap((one) => one.drawable).sort((a, b) => a - b);
   return { zoning, ground, zoneOf, unusable, nearBorder, zones, drawable, ...(await gateOf(estateId, ground)) };

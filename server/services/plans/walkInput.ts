@@ -9,6 +9,7 @@ import type { Plan } from '../../models/Plan.ts';
 import type { Target } from '../../models/Target.ts';
 import type { PlanGround } from './planGround.ts';
 import { sampledZones } from './standingOfPlan.ts';
+import { say } from '../../sentences/say.ts';
 
 /** The vines of a plan as a walk takes them, with the seconds that the plan allows at each. */
 export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readonly Target[], how: { gateXY: XY; people: number; end: 'gate' | 'anywhere'; terrain: Terrain | null }): ShareInput {
@@ -20,6 +21,6 @@ export function shareInputOf({ ground }: PlanGround, plan: Plan, targets: readon
     const zone = sampledZoneOf.get(zoneId) ?? 0;
     return { rowIndex: ground.rowIndexOf.get(rowId) ?? -1, ordinal, zone, serviceS: secondsAt(zone, measureCodes) };
   });
-  if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', `Rows of ${ground.block.name} changed after these vines were drawn. Draw the vines again.`);
+  if (vines.some(({ rowIndex }) => rowIndex < 0)) throw new Unusable('rowsChanged', say('rowsChanged', { block: ground.block.name }));
   return { rows: ground.rows, vines, pace: choices.pace, ...how };
 }

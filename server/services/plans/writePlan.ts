@@ -15,6 +15,7 @@ import { Round } from '../../models/Round.ts';
 import { Target } from '../../models/Target.ts';
 import { composePlan, planEngine, positionOf, recordOf, type ComposedPlan } from './composePlan.ts';
 import { viewPlan } from './viewPlan.ts';
+import { say } from '../../sentences/say.ts';
 
 const newSeed = () => randomInt(0, 2_147_483_647);
 
@@ -40,7 +41,7 @@ export async function changePlan(access: Access, planId: string, change: PlanCha
   const composed = change.choices ? await composePlan(access.estateId, known.zoningId, { choices: change.choices, seed: known.seed }) : null;
   await Plan.transaction(async (trx) => {
     const plan = await lockedRow(trx, access, planId);
-    if (plan.state !== 'draft') throw new Clash('locked', `"${plan.name}" is locked, so that its vines stay as drawn. Make a new plan, or draw again with a reason.`);
+    if (plan.state !== 'draft') throw new Clash('locked', say('planLocked', { plan: plan.name }));
     const before = { name: plan.name, choices: plan.options };
     await plan.$query(trx).patch({ ...(change.name ? { name: change.name } : {}), ...(composed && change.choices ? { options: change.choices, isPilot: change.choices.isPilot, result: recordOf(composed), engineVersion: planEngine } : {}) });
     if (composed) await writeDraw(trx, planId, access.estateId, composed);
@@ -55,9 +56,9 @@ export async function redrawPlan(access: Access, planId: string, { reason, seed 
   const composed = await composePlan(access.estateId, known.zoningId, { choices: planChoices.parse(known.options), seed });
   await Plan.transaction(async (trx) => {
     const plan = await lockedRow(trx, access, planId);
-    if (plan.state === 'closed') throw new Clash('closed', `"${plan.name}" is closed. Make a new plan.`);
+    if (plan.state === 'closed') throw new Clash('closed', say('planClosed', { plan: plan.name }));
     const walking = await Round.query(trx).where({ estateId: access.estateId, planId }).whereIn('state', ['sent', 'open']).resultSize();
-    if (walking > 0) throw new Clash('roundsOut', `${walking} round${walking === 1 ? ' walks' : 's walk'} these vines. Close or call off the rounds before drawing again.`);
+    if (walking > 0) throw new Clash('roundsOut', say('roundsOut', { n: walking }));
     const old = await Target.query(trx).where({ estateId: access.estateId, planId }).orderBy('walkOrder').select('id', 'rowId', 'ordinal', 'drawOrder', 'reserveRowId', 'reserveOrdinal', 'zoneId');
     const draws = [...(plan.draws as unknown[]), { at: now.toISOString(), by: access.personId, reason, seed: plan.seed, targets: old }];
     const before = { seed: plan.seed };
@@ -72,7 +73,7 @@ export async function redrawPlan(access: Access, planId: string, { reason, seed 
 export async function lockPlan(access: Access, planId: string, now: Date): Promise<PlanView> {
   await Plan.transaction(async (trx) => {
     const plan = await lockedRow(trx, access, planId);
-    if (plan.state !== 'draft') throw new Clash('locked', `"${plan.name}" is locked already.`);
+    if (plan.state !== 'draft') throw new Clash('locked', say('planLockedAlready', { plan: plan.name }));
     await plan.$query(trx).patch({ state: 'locked', lockedAt: now });
     await writeAudit(trx, access, { action: 'plans.lock', subjectType: 'plan', subjectId: planId, subjectName: plan.name, after: { seed: plan.seed } });
   });

@@ -9,15 +9,16 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { settlesAll } from './listConflicts.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Settles a conflict as a person says. Readings are left out, marked or corrected by counter-records; nothing is deleted. */
 export async function settleConflict(access: Access, conflictId: string, input: ConflictChoice, now: Date): Promise<void> {
   await ReadingConflict.transaction(async (trx) => {
     const conflict = await ReadingConflict.query(trx).findOne({ estateId: access.estateId, id: conflictId }).forUpdate().throwIfNotFound();
     const readings = await Reading.query(trx).where({ estateId: access.estateId }).whereIn('id', conflict.readingIds).orderBy('takenAt').orderBy('id');
-    if (!settlesAll(access) && readings.some(({ personId }) => personId !== access.personId)) throw new NotAllowed('Readings of other people are in this. The manager decides it.');
-    if (conflict.state === 'settled') throw new Clash('settled', 'This conflict was settled already.');
-    if (!answersTo[conflict.kind].includes(input.choice)) throw new Unusable('noSuchAnswer', `This cannot be settled by "${input.choice}". Choose one of: ${answersTo[conflict.kind].join(', ')}.`);
+    if (!settlesAll(access) && readings.some(({ personId }) => personId !== access.personId)) throw new NotAllowed(say('readingsOfOthers'));
+    if (conflict.state === 'settled') throw new Clash('settled', say('conflictSettled'));
+    if (!answersTo[conflict.kind].includes(input.choice)) throw new Unusable('noSuchAnswer', say('noSuchAnswer', { choice: input.choice, choices: answersTo[conflict.kind].join(', ') }));
     await actions[input.choice](trx, { access, readings, keptReadingId: input.keptReadingId, now });
     await conflict.$query(trx).patch({ state: 'settled', choice: input.choice, keptReadingId: input.keptReadingId, settledBy: access.personId, settledAt: now });
     await writeAudit(trx, access, { action: 'conflicts.settle', subjectType: 'conflict', subjectId: conflictId, after: { ...input, kind: conflict.kind, readingIds: conflict.readingIds } });
@@ -33,7 +34,7 @@ interface Settling {
 
 const actions: Record<ConflictChoice['choice'], (trx: Transaction, settling: Settling) => Promise<void>> = {
   keepOne: async (trx, { access, readings, keptReadingId }) => {
-    if (!readings.some(({ id }) => id === keptReadingId)) throw new Missing('Choose which of these readings stays.');
+    if (!readings.some(({ id }) => id === keptReadingId)) throw new Missing(say('chooseReading'));
     await leaveOut(trx, access, readings.filter(({ id }) => id !== keptReadingId), 'Another reading of the same vine was kept.');
   },
   repeat: (trx, { access, readings }) => mark(trx, access, { readings: readings.slice(1), flag: 'repeat' }),
@@ -58,7 +59,7 @@ async function moveToNames(trx: Transaction, { access, readings, now }: Settling
       if (seenAs === null) continue;
       const index = ground.stored.findIndex(({ label }) => label === seenAs.row);
       const ordinal = index < 0 ? null : vineOrdinal(ground.rows.rows[index]!, seenAs.vine, ground.block.vineOneEnd);
-      if (ordinal === null) throw new Unusable('noSuchVine', `There is no row ${seenAs.row}, vine ${seenAs.vine} in ${ground.block.name} today. Leave the reading out, or keep it where it is.`);
+      if (ordinal === null) throw new Unusable('noSuchVine', say('noSuchVineToday', { row: seenAs.row, vine: seenAs.vine, block: ground.block.name }));
       await Reading.query(trx).insert({ ...reading, id: randomUUID(), rowId: ground.stored[index]!.id, ordinal, position: null, targetId: null, supersedes: reading.id, typedBy: access.personId, receivedAt: now, seenAs });
     }
   }

@@ -3,6 +3,7 @@ import { Missing } from '../../errors.ts';
 import { Reading } from '../../models/Reading.ts';
 import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { say } from '../../sentences/say.ts';
 
 export interface SeasonOfBlock {
   season: Season;
@@ -17,9 +18,9 @@ export interface SeasonOfBlock {
  */
 export async function seasonOfBlock(estateId: string, blockId: string, { seasonId, until }: { seasonId: string | null; until: Date | null }): Promise<SeasonOfBlock> {
   const newest = await newestZones(estateId, blockId, { until, seasonId: null });
-  if (!newest) throw new Missing(until === null ? 'This block has no zones in force. Publish its zones first; ripeness is followed by zone.' : 'This block had no zones in force on that day. Choose a later day.');
+  if (!newest) throw new Missing(until === null ? say('noZonesInForce') : say('noZonesInForceThen'));
   const season = await Season.query().findOne({ estateId, id: seasonId ?? newest.seasonId });
-  if (!season) throw new Missing('This season is not one of this estate. Choose a season from the list.');
+  if (!season) throw new Missing(say('unknownSeason'));
   const own = season.id === newest.seasonId ? newest : await newestZones(estateId, blockId, { until, seasonId: season.id });
   if (own) return { season, zoning: own, zonesFrom: null };
   const { name } = await Season.query().findOne({ estateId, id: newest.seasonId }).throwIfNotFound();

@@ -13,12 +13,13 @@ import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Target } from '../../models/Target.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Notes that a person has seen their round. Seen twice is seen once. */
 export async function acknowledgeRound(access: Access, roundId: string, now: Date): Promise<void> {
   await RoundPerson.transaction(async (trx) => {
     const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
-    if (!member) throw new Missing('This round was not sent to you.');
+    if (!member) throw new Missing(say('roundNotYours'));
     if (member.acknowledgedAt !== null) return;
     await RoundPerson.query(trx).where({ estateId: access.estateId, roundId, personId: access.personId }).patch({ acknowledgedAt: now });
     await writeAudit(trx, access, { action: 'rounds.acknowledge', subjectType: 'round', subjectId: roundId });
@@ -37,7 +38,7 @@ export async function changeRound(access: Access, roundId: string, change: z.inf
     const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
     if (!member && seesOwnRoundsOnly(access)) throw new Missing();
     if (round.state === change.state) return;
-    if (round.state === 'called off') throw new Clash('calledOff', 'This round was called off. Ask who sent it.');
+    if (round.state === 'called off') throw new Clash('calledOff', say('calledOff'));
     if (change.state === 'closed' && !change.whole && member && (await isLeftToOthers(trx, access, member, now))) return;
     if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
     const before = { state: round.state };
@@ -66,7 +67,7 @@ async function refuseRestricted(trx: Transaction, round: Round, { targetIds, at 
   const [longest] = restrictionsAt(rules.map((rule) => ({ rowIds: rule.rowIds, startsAt: rule.startsAt.toISOString(), endsAt: rule.endsAt.toISOString(), lifted: rule.liftedAt, product: rule.product })), { at, rowIds });
   if (!longest) return;
   const [block, estate] = [await Block.query(trx).findOne({ estateId, id: blockId }).throwIfNotFound(), await Estate.query(trx).findById(estateId).throwIfNotFound()];
-  const until = new Intl.DateTimeFormat('en-GB', { timeZone: estate.timeZone, weekday: 'short', day: 'numeric', month: 'short', hour: '2-digit', minute: '2-digit' }).format(new Date(longest.endsAt));
-  const lifters = new Intl.ListFormat('en', { type: 'disjunction' }).format((await peopleWhoMay(trx, estateId, 'restrictions.lift')).map(({ name }) => name));
-  throw new Clash('entryRestricted', `Do not enter ${block.name} until ${until} (${longest.product}). Only ${lifters} may lift this early. The product label, posted signs, the responsible person and local law come first.`, { until: longest.endsAt });
+  const lifters = (await peopleWhoMay(trx, estateId, 'restrictions.lift')).map(({ name }) => name);
+  const until = { moment: new Date(longest.endsAt), timeZone: estate.timeZone };
+  throw new Clash('entryRestricted', say('entryRestricted', { block: block.name, until, product: longest.product, lifters: { oneOf: lifters } }), { until: longest.endsAt });
 }

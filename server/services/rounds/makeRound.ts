@@ -21,6 +21,7 @@ import { loadPlanGround } from '../plans/planGround.ts';
 import { shareInputOf } from '../plans/walkInput.ts';
 import { closedWords, longestOn } from './closedOn.ts';
 import type { RoundWalk } from './roundWalk.ts';
+import { say } from '../../sentences/say.ts';
 
 /** A round ready to be stored: people checked, the walk shared. */
 export interface PreparedRound {
@@ -42,8 +43,8 @@ export async function makeRound(access: Access, planId: string, input: NewRound,
 export async function prepareRound(access: Access, planId: string, input: NewRound, day: PreparedRound['day']): Promise<PreparedRound> {
   const { estateId } = access;
   const plan = await Plan.query().findOne({ estateId, id: planId }).throwIfNotFound();
-  if (plan.state === 'draft') throw new Clash('notLocked', `"${plan.name}" is a draft. Lock it, so that its vines stay as drawn, then send it.`);
-  if (plan.state === 'closed') throw new Clash('closed', `"${plan.name}" is closed. Make a new plan.`);
+  if (plan.state === 'draft') throw new Clash('notLocked', say('notLocked', { plan: plan.name }));
+  if (plan.state === 'closed') throw new Clash('closed', say('planClosed', { plan: plan.name }));
   const people = await walkersOf(estateId, input.people);
   const targets = await Target.query().where({ estateId, planId }).orderBy('walkOrder');
   const shares = await sharesOf(access, plan, targets, { ...input, people: people.length });
@@ -73,7 +74,7 @@ async function walkersOf(estateId: string, ids: string[]): Promise<Person[]> {
   return ids.map((id) => {
     const person = people.find((one) => one.id === id);
     const roles = memberships.filter(({ personId }) => personId === id).map(({ role }) => role);
-    if (!person || !may(roles, 'readings.record', 'own')) throw new Unusable('notAWalker', `${person && roles.length > 0 ? person.name : 'Somebody chosen'} may not record readings in this estate. Choose people who may, or change the role first.`);
+    if (!person || !may(roles, 'readings.record', 'own')) throw new Unusable('notAWalker', person && roles.length > 0 ? say('notAWalker', { name: person.name }) : say('notAWalkerHere'));
     return person;
   });
 }

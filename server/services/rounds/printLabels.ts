@@ -17,6 +17,7 @@ import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Target } from '../../models/Target.ts';
 import { fieldRound } from './fieldRound.ts';
 import { seesOwnRoundsOnly } from './listRounds.ts';
+import { say } from '../../sentences/say.ts';
 
 /** `vine`: a bag for each vine that something of goes to the laboratory; `zone`: one bag for all vines of a zone. */
 export type BagsPer = 'vine' | 'zone';
@@ -41,7 +42,7 @@ export async function printLabels(access: Access, roundId: string, options: { pa
   const language = languageOf(people.find(({ id }) => id === access.personId)?.language);
   const wanted: Wanted[] = [];
   for (const id of ids) wanted.push(...(await wantedOf({ ...access, personId: id }, round, { per: options.per, language, now: options.now, person: people.find((one) => one.id === id)?.name ?? '' })));
-  if (wanted.length === 0) throw new Unusable('noBags', 'Nothing of this round goes to the laboratory, so there is nothing to label. Print blank labels for other bags.');
+  if (wanted.length === 0) throw new Unusable('noBags', say('noBags'));
   const codes = await codesFor(access, round, wanted);
   const title = `${wanted[0]!.facts!.block} ${round.onDate}`;
   return { name: fileName(`${title} labels`), body: await labelSheet(wanted.map(({ facts }, i) => ({ code: codes[i]!, facts })), { paper: options.paper, language, title }) };

@@ -8,6 +8,7 @@ import { Clash, Unusable } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
+import { say } from '../../sentences/say.ts';
 
 const shownProblems = 20;
 const chunk = 500;
@@ -49,8 +50,8 @@ export async function importWeather(access: Access, file: z.infer<typeof weather
   const known = new Set((await WeatherDayRecord.query().where({ estateId: access.estateId }).select('day')).map(({ day }) => day));
   const view = { ...read, days: [...read.days], questions: [...read.questions], columns: [...read.columns], problems: read.problems.slice(0, shownProblems), replaces: read.days.filter(({ day }) => known.has(day)).length, kept: 0 };
   if (!file.apply) return view;
-  if (read.questions.length > 0) throw new Clash('tableQuestions', 'Answer what is asked about the table first; nothing was kept.');
-  if (read.problems.length > 0) throw new Unusable('tableProblems', `${read.problems.length} lines of the table cannot be used; nothing was kept. Correct them and read it again.`);
+  if (read.questions.length > 0) throw new Clash('tableQuestions', say('tableQuestions'));
+  if (read.problems.length > 0) throw new Unusable('tableProblems', say('tableProblems', { n: read.problems.length }));
   requirePast(read.days, now);
   await WeatherDayRecord.transaction(async (trx) => {
     for (let from = 0; from < read.days.length; from += chunk) await keep(trx, access, { days: read.days.slice(from, from + chunk), source: 'imported', now });
@@ -68,5 +69,5 @@ function requirePast(days: readonly { day: string }[], now: Date): void {
   // A day ahead may already have begun east of Greenwich.
   const latest = new Date(now.getTime() + 86_400_000).toISOString().slice(0, 10);
   const ahead = days.find(({ day }) => day > latest);
-  if (ahead) throw new Unusable('weatherAhead', `${ahead.day} lies ahead. Only weather that has happened is kept; a forecast is not.`);
+  if (ahead) throw new Unusable('weatherAhead', say('weatherAhead', { day: ahead.day }));
 }

@@ -8,6 +8,7 @@ import { fromAlongAcross, toAlongAcross } from '../../../shared/geo/rowFrame.ts'
 import { pointOnPiece } from '../../../shared/geo/vines.ts';
 import { Unusable } from '../../errors.ts';
 import { gridOf, type BlockVines } from '../../ground/blockVines.ts';
+import { say } from '../../sentences/say.ts';
 
 /** What a person asked for, as the edit that is kept and replayed: rows become ground, snapping becomes its outcome. */
 export function editFromOperation(ground: BlockVines, map: ZoneMap, operation: ZoneOperation): ZoneEdit {
@@ -75,6 +76,6 @@ function extended([a, b]: [LonLat, LonLat], by: { start: number; end: number; le
 
 function rowOf(ground: BlockVines, rowId: string): number {
   const row = ground.rowIndexOf.get(rowId);
-  if (row === undefined) throw new Unusable('unknownRow', `This row is not a row of ${ground.block.name}. Load the block again.`);
+  if (row === undefined) throw new Unusable('unknownRow', say('unknownRow', { block: ground.block.name }));
   return row;
 }

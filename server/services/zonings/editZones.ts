@@ -13,12 +13,13 @@ import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 import { editFromOperation } from './editFromOperation.ts';
 import { drawZones, storeZones } from './storeZones.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Keeps the candidate with so many zones as a draft that can be edited. Keeping another number later starts the draft anew. */
 export async function keepAsDraft(access: Access, zoningId: string, zoneCount: number): Promise<void> {
   const zoning = await findZoning(access, zoningId);
-  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', 'This zoning has no result yet. Wait until it is done.');
-  if (zoning.state === 'live' || zoning.state === 'retired') throw new Clash('published', 'These zones were published. Take them up as a new draft to change them.');
+  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', say('zoningNotReady'));
+  if (zoning.state === 'live' || zoning.state === 'retired') throw new Clash('published', say('zonesPublished'));
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
   requireSameOutline(zoning, ground);
@@ -55,7 +56,7 @@ export async function editZones(access: Access, zoningId: string, input: { opera
 export async function stepEdits(access: Access, zoningId: string, input: { step: 'undo' | 'redo'; revision: number }): Promise<void> {
   const { zoning, ground, edits } = await openDraft(access, zoningId, input.revision);
   const target = input.step === 'undo' ? edits.filter((record) => !record.undone).at(-1) : edits.find((record) => record.undone);
-  if (!target) throw new Clash('nothingToStep', input.step === 'undo' ? 'There is no edit to undo.' : 'There is no edit to redo.');
+  if (!target) throw new Clash('nothingToStep', say(input.step === 'undo' ? 'nothingToUndo' : 'nothingToRedo'));
   target.undone = input.step === 'undo';
   const after = replay(zoning, ground, edits);
   const drawn = await drawZones(zoning, ground, after);
@@ -77,7 +78,7 @@ export async function listEdits(access: Access, zoningId: string): Promise<ZoneE
 /** Takes a zoning up again as a new draft; the old one stays as it is. */
 export async function restoreAsDraft(access: Access, zoningId: string): Promise<{ id: string }> {
   const old = await findZoning(access, zoningId);
-  if (old.labels === null || old.baseLabels === null) throw new Unusable('noZones', 'This zoning has no zones that could be taken up.');
+  if (old.labels === null || old.baseLabels === null) throw new Unusable('noZones', say('noZonesToTakeUp'));
   const ground = await loadBlockVines(access.estateId, old.blockId);
   requireSameOutline(old, ground);
   const map = await mapOf(old, ground);
@@ -131,18 +132,18 @@ async function openDraft(access: Access, zoningId: string, revision: number): Pr
 
 /** Labels are of one grid; on another outline they would lie wrong. */
 export function requireSameOutline(zoning: Zoning, ground: BlockVines): void {
-  if (gridOf(ground).key !== zoning.gridKey) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since these zones were made. Run the zoning again.`);
+  if (gridOf(ground).key !== zoning.gridKey) throw new Clash('outlineChanged', say('outlineChangedSinceZones', { block: ground.block.name }));
 }
 
 function requireDraft(zoning: Zoning): void {
-  if (zoning.state !== 'draft') throw new Clash('notDraft', 'Only a draft can be edited. Keep a proposal as a draft, or take published zones up as a new draft.');
+  if (zoning.state !== 'draft') throw new Clash('notDraft', say('onlyDraftEdited'));
 }
 
 async function requireRevision(access: Access, zoning: Zoning, revision: number): Promise<void> {
   if (zoning.revision === revision) return;
   const last = await lastChange(access, zoning.id);
-  const who = last?.personId ? ((await Person.query().findById(last.personId))?.name ?? 'Somebody') : 'Somebody';
-  throw new Stale('zonesChanged', `${who} changed these zones since you read them. Load them again; your step was not taken.`, { revision: zoning.revision, who });
+  const who = last?.personId ? (await Person.query().findById(last.personId))?.name : undefined;
+  throw new Stale('zonesChanged', who === undefined ? say('zonesChangedBySomebody') : say('zonesChanged', { who }), { revision: zoning.revision, who });
 }
 
 /** The last act on a zoning that changed its zones. */

@@ -17,6 +17,7 @@ import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
 import { fileName } from './fileName.ts';
 import { readLabels, viewZoning } from './view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Formats that zones can leave in, for menus. */
 export function listFormats(): ExportFormatLine[] {
@@ -26,7 +27,7 @@ export function listFormats(): ExportFormatLine[] {
 /** Zones as a file: those kept, or of a proposal the number asked for. Who took what away is noted. */
 export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null }): Promise<{ name: string; type: string; body: Buffer }> {
   const format = exportFormats.find(({ id }) => id === asked.format);
-  if (!format) throw new Unusable('unknownFormat', `There is no format "${asked.format}". Choose one of ${exportFormats.map(({ id }) => id).join(', ')}.`);
+  if (!format) throw new Unusable('unknownFormat', say('unknownFormat', { format: asked.format, formats: exportFormats.map(({ id }) => id).join(', ') }));
   const input = await exportInput(access, zoningId, { zones: asked.zones, withLayers: format.withLayers === true });
   const body = await format.write(input);
   await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
@@ -35,7 +36,7 @@ export async function exportZones(access: Access, zoningId: string, asked: { for
 
 async function exportInput(access: Access, zoningId: string, { zones, withLayers }: { zones: number | null; withLayers: boolean }): Promise<ZoneExport> {
   const view = await viewZoning(access, zoningId, zones);
-  if (view.zones.length === 0) throw new Clash('notReady', 'This zoning has no zones that could be exported.');
+  if (view.zones.length === 0) throw new Clash('notReady', say('noZonesToExport'));
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const estate = await Estate.query().findById(access.estateId).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, view.blockId);
@@ -51,7 +52,7 @@ async function exportInput(access: Access, zoningId: string, { zones, withLayers
 
 async function layerCells(access: Access, view: ZoningView, zoning: Zoning): Promise<ZoneExport['layers']> {
   const placed = (await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId))).filter((one) => one.placed.gridKey === zoning.gridKey);
-  if (placed.length === 0) throw new Clash('noLayers', 'The layers of this zoning no longer lie on this outline. Place them again, or choose another format.');
+  if (placed.length === 0) throw new Clash('noLayers', say('noLayers'));
   return placed.map(({ layer, placed: on }) => ({ name: layer.name, unit: layer.unit, cells: decodeFloatCells(on.cells) }));
 }
 

@@ -21,6 +21,7 @@ import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { lockZoning, requireSameOutline } from './editZones.ts';
 import { readLabels } from './view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. */
 export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
@@ -44,7 +45,7 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
 export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; now: Date }): Promise<void> {
   await Zoning.transaction(async (trx) => {
     const zoning = await lockZoning(trx, access, zoningId, input.revision);
-    if (zoning.state !== 'draft') throw new Clash('notDraft', 'Only a draft can be published. Keep a proposal as a draft first.');
+    if (zoning.state !== 'draft') throw new Clash('notDraft', say('onlyDraftPublished'));
     const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
     requireSameOutline(zoning, ground);
     const [replaced] = await Zoning.query(trx).where({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' }).forUpdate().select('id', 'number');
@@ -75,7 +76,7 @@ export async function compareZonings(access: Access, zoningId: string, otherId: 
 /** Zones of the vines as a page shows them: those kept, or the advised ones of a proposal. */
 export async function zonesShown(access: Access, zoning: Zoning, ground: BlockVines): Promise<Uint8Array> {
   requireSameOutline(zoning, ground);
-  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', `Zoning ${zoning.number} has no result to compare.`);
+  if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', say('noResultToCompare', { number: zoning.number }));
   const { labels, gridKey } = await readLabels(access, zoning.id, null);
   return zonesOfVines(ground, { labels: Buffer.from(encodeCells(labels)), gridKey });
 }

@@ -16,11 +16,12 @@ import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
 import { fileName } from './fileName.ts';
 import { viewZoning } from './view.ts';
+import { say } from '../../sentences/say.ts';
 
 /** A zoning on paper, in the language and units of whoever prints it. */
 export async function reportZoning(access: Access, zoningId: string, asked: { size: 'A4' | 'Letter'; zones: number | null; now: Date }): Promise<{ name: string; body: Buffer }> {
   const view = await viewZoning(access, zoningId, asked.zones);
-  if (view.zones.length === 0) throw new Clash('notReady', 'This zoning has no zones that could be printed.');
+  if (view.zones.length === 0) throw new Clash('notReady', say('noZonesToPrint'));
   const [estate, person, zoning] = await Promise.all([
     Estate.query().findById(access.estateId).throwIfNotFound(),
     Person.query().findById(access.personId).throwIfNotFound(),

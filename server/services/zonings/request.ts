@@ -12,6 +12,7 @@ import { Block } from '../../models/Block.ts';
 import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { readinessOf } from '../layers/view.ts';
+import { say } from '../../sentences/say.ts';
 
 const leastCoverage = 0.6;
 
@@ -32,7 +33,7 @@ export async function requestZoning(access: Access, blockId: string, input: NewZ
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
   for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
   const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();
-  if (!season) throw new Unusable('noSeason', 'This estate has no season yet. Make the season first.');
+  if (!season) throw new Unusable('noSeason', say('noSeasonToZone'));
   return Zoning.transaction(async (trx) => {
     const made: (Asked & { blockId: string })[] = [];
     for (const block of blocks) made.push({ blockId: block.id, ...(await insertZoning(trx, access, { block, seasonId: season.id, input, options: { ...options, withBlocks: all.filter((id) => id !== block.id) } })) });
@@ -60,17 +61,17 @@ async function requireKnownRecipe(access: Access, blockId: string, options: Retu
     const recipe = zoningOptions.safeParse(stored);
     return recipe.success && JSON.stringify(recipe.data) === wanted;
   });
-  if (!isKnown) throw new NotAllowed('You may run a zoning again as it was; the agronomist chooses other layers and weights.');
+  if (!isKnown) throw new NotAllowed(say('onlyAsItWas'));
 }
 
 /** A layer with red findings keeps out of zoning unless somebody answers for it by name. */
 async function requireUsableLayers(access: Access, block: Block, layerIds: string[]): Promise<void> {
   const found = await loadBlockLayers(access.estateId, block.id, layerIds);
-  if (found.length < new Set(layerIds).size) throw new Unusable('layerMissing', `Some of these layers do not lie on ${block.name}. Choose from the layers of the block.`);
+  if (found.length < new Set(layerIds).size) throw new Unusable('layerMissing', say('layerMissing', { block: block.name }));
   for (const { layer, placed } of found) {
     const readiness = readinessOf(placed, block.gridKey);
-    if (readiness === 'stale') throw new Clash('layerStale', `Layer "${layer.name}" was made for an older outline of ${block.name}. Place it again first.`);
-    if (readiness === 'blocked') throw new Unusable('layerBlocked', `Layer "${layer.name}" has findings that keep it out. Read them, and overrule them with a reason if you must.`);
-    if (placed.coverage < leastCoverage && readiness !== 'overridden') throw new Unusable('layerCoverage', `Layer "${layer.name}" covers ${Math.round(placed.coverage * 100)} % of ${block.name}; ${leastCoverage * 100} % is needed.`);
+    if (readiness === 'stale') throw new Clash('layerStale', say('layerOutOfDate', { layer: layer.name, block: block.name }));
+    if (readiness === 'blocked') throw new Unusable('layerBlocked', say('layerBlocked', { layer: layer.name }));
+    if (placed.coverage < leastCoverage && readiness !== 'overridden') throw new Unusable('layerCoverage', say('layerCoverage', { layer: layer.name, percent: Math.round(placed.coverage * 100), block: block.name, least: leastCoverage * 100 }));
   }
 }

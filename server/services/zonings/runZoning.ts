@@ -14,6 +14,7 @@ import type { Job } from '../../models/Job.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 import { plainFigures } from './plainFigures.ts';
+import { say } from '../../sentences/say.ts';
 
 /** Measures of fruit that may confirm zones; they never make them. */
 const fruitMeasures = ['brix', 'ph', 'ta', 'clusterWeight', 'clusterCount'];
@@ -39,7 +40,7 @@ export const zoningJob: JobHandler = {
 /** Everything that decides the outcome, from what is stored: the same record gives the same zones. */
 export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput> {
   const options = zoningOptions.parse(zoning.options);
-  if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', `The outline of ${ground.block.name} has changed since this zoning was asked for. Run it again.`);
+  if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', say('outlineChangedSinceAsked', { block: ground.block.name }));
   const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));
   const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, borders, principalComponents } = options;
   return { ...(await blockInput(zoning, ground, options)), together, ...(borders === 'free' ? {} : { planting: { rows: ground.rows, vines: ground.vines } }), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true } };

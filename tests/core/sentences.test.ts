@@ -1,0 +1,76 @@
+import { readdirSync, readFileSync } from 'node:fs';
+import { join } from 'node:path';
+import { describe, expect, it } from 'vitest';
+import { z } from 'zod';
+import { Clash, problemOf } from '../../server/errors.ts';
+import { en } from '../../server/sentences/en.ts';
+import { es } from '../../server/sentences/es.ts';
+import { fr } from '../../server/sentences/fr.ts';
+import * as inputsEs from '../../server/sentences/inputs/es.ts';
+import * as inputsFr from '../../server/sentences/inputs/fr.ts';
+import * as inputsIt from '../../server/sentences/inputs/it.ts';
+import * as inputsPt from '../../server/sentences/inputs/pt.ts';
+import { it as italian } from '../../server/sentences/it.ts';
+import { pt } from '../../server/sentences/pt.ts';
+import { say, sentenceIn } from '../../server/sentences/say.ts';
+
+const others = { es, fr, it: italian, pt } as const;
+const inputs = { es: inputsEs.es, fr: inputsFr.fr, it: inputsIt.it, pt: inputsPt.pt } as const;
+const placesIn = (text: string) => [...new Set(text.match(/\{\w+\}/g))].sort();
+
+function sources(folder: string): string[] {
+  return readdirSync(folder, { withFileTypes: true, recursive: true })
+    .filter((entry) => entry.isFile() && entry.name.endsWith('.ts'))
+    .map((entry) => readFileSync(join(entry.parentPath, entry.name), 'utf8'));
+}
+
+describe('refusals in the language of whoever asked', () => {
+  it.each(Object.entries(others))('%s has every sentence, with its places and forms', (_language, catalog) => {
+    expect(Object.keys(catalog)).toEqual(Object.keys(en));
+    for (const [key, text] of Object.entries(en)) {
+      const told = catalog[key as keyof typeof en];
+      expect(placesIn(told), key).toEqual(placesIn(text));
+      expect(told.split(' | ').length, key).toBe(text.split(' | ').length);
+      expect(told, key).not.toBe(text);
+    }
+  });
+
+  it('uses every sentence, and refuses with nothing that is English only', () => {
+    const code = sources('server').join('\n');
+    expect(Object.keys(en).filter((key) => !new RegExp(`['"]${key}['"]`).test(code))).toEqual([]);
+    expect(code.match(/new (?:Unusable|Clash|Stale|TooMuch)\('\w+', ['"`]|new (?:Missing|NotAllowed|NotSignedIn)\(['"`]/g) ?? []).toEqual([]);
+  });
+
+  it.each(Object.entries(inputs))('%s has every sentence of the contracts about wrong input', (_language, catalog) => {
+    const sentences = sources('shared/contracts').flatMap((text) => [...text.matchAll(/'([A-Z][^'\n]{8,}\.)'/g)].map(([, sentence]) => sentence!));
+    expect(sentences.length).toBeGreaterThan(40);
+    expect(sentences.filter((sentence) => !catalog[sentence])).toEqual([]);
+  });
+
+  it('writes numbers of things, names and times as each language does', () => {
+    expect(sentenceIn('en', say('roundsOut', { n: 1 }))).toBe('A round walks these vines. Close it or call it off before drawing again.');
+    expect(sentenceIn('en', say('roundsOut', { n: 3 }))).toMatch(/^3 rounds walk/);
+    const until = { moment: new Date('2026-08-20T13:00:00Z'), timeZone: 'Europe/Lisbon' };
+    const stop = say('entryRestricted', { block: 'Heron Bank', until, product: 'Wettable sulphur', lifters: { oneOf: ['Tessa Brand', 'Hester Vane'] } });
+    expect(sentenceIn('en', stop)).toMatch(/until Thu, 20 Aug 2026, 14:00 .*Tessa Brand or Hester Vane/);
+    expect(sentenceIn('fr', stop)).toMatch(/jeu\. 20 août 2026.*14:00.*Tessa Brand ou Hester Vane/);
+  });
+
+  it('says wrong input in the words of the contract, or of the library where the contract has none', () => {
+    const contract = z.object({ name: z.string().min(1, 'Give a name.'), areaHa: z.number().max(1000) });
+    const { error } = contract.safeParse({ name: '', areaHa: 2000 });
+    expect(problemOf(error, 'en').errors).toEqual([
+      { path: 'name', message: 'Give a name.' },
+      { path: 'areaHa', message: 'Too big: expected number to be <=1000' },
+    ]);
+    const [name, area] = problemOf(error, 'es').errors!;
+    expect(name!.message).toBe(inputsEs.es['Give a name.']);
+    expect(area!.message).toBe('Demasiado grande: se esperaba que número fuera <=1000');
+  });
+
+  it('keeps English for the log', () => {
+    const error = new Clash('roundsOut', say('roundsOut', { n: 2 }));
+    expect(error.message).toMatch(/^2 rounds walk/);
+    expect(problemOf(error, 'pt').detail).not.toBe(error.message);
+  });
+});

@@ -39,6 +39,19 @@ export function wideCells(labels: Labels, cols: number, { widthM, cellSizeM }: W
   return isReached;
 }
 
+/** Whether every label in use has a place, somewhere, where a disc of the width fits in; judged as `wideShare` does. Cost: little, since wide zones are found at once. */
+export function allReachWidth(labels: Labels, cols: number, { widthM, cellSizeM }: Width): boolean {
+  const offsets = discOffsets(widthM / 2 / cellSizeM - 1e-9);
+  const isOther = (own: number) => (near: number) => labels[near] !== 0 && labels[near] !== own;
+  const sought = new Set(labels);
+  sought.delete(0);
+  for (let cell = 0; cell < labels.length && sought.size > 0; cell++) {
+    const own = labels[cell]!;
+    if (own !== 0 && sought.has(own) && !someNear(offsets, cell, { labels, cols }, isOther(own))) sought.delete(own);
+  }
+  return sought.size === 0;
+}
+
 /** Calls `visit` for each cell with a label that has a cell of another value, 0 included, among its eight neighbours. */
 function eachRim(labels: Labels, cols: number, visit: (cell: number, label: number) => void): void {
   const rows = labels.length / cols;
@@ -65,9 +78,18 @@ function discOffsets(radius: number): (readonly [right: number, down: number])[]
 }
 
 function stamp(offsets: readonly (readonly [number, number])[], cell: number, { labels, cols }: { labels: Labels; cols: number }, mark: (cell: number) => void): void {
+  someNear(offsets, cell, { labels, cols }, (near) => {
+    mark(near);
+    return false;
+  });
+}
+
+/** Whether one of the cells near by, of those on the grid, is as asked; the others are not looked at then. */
+function someNear(offsets: readonly (readonly [number, number])[], cell: number, { labels, cols }: { labels: Labels; cols: number }, isAsAsked: (cell: number) => boolean): boolean {
   const col = cell % cols;
   for (const [right, down] of offsets) {
     const near = cell + right + down * cols;
-    if (col + right >= 0 && col + right < cols && near >= 0 && near < labels.length) mark(near);
+    if (col + right >= 0 && col + right < cols && near >= 0 && near < labels.length && isAsAsked(near)) return true;
   }
+  return false;
 }

@@ -9,6 +9,8 @@
 import { polygonsArea } from '../geo/rings.ts';
 import { adviseLayers, compareEdges, edgeTask, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
+import type { Grid } from './grid.ts';
+import { allReachWidth } from './labelsWidth.ts';
 import { polygonise } from './polygonise.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
@@ -106,7 +108,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   const followed = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
   const own = followed.map(({ zones }) => zones);
   // A zone that one of several blocks lacks is no less a zone.
-  const count = adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable: workableNumbers(input.together?.length ? cleaned : own) });
+  const count = adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable: workableNumbers(input.together?.length ? { zones: cleaned, grid: stacked.grid } : { zones: own, grid: input.grid }, options.smoothingM) });
   const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
@@ -152,7 +154,12 @@ function fruitCheck({ labels }: CellZones, readings: readonly ZoningReadings[], 
   return checkOnFruit(measures, streamOf(seed, FRUIT_STREAM));
 }
 
-/** Numbers above one whose zones have all survived clean-up. */
-function workableNumbers(cleaned: readonly CellZones[]): number[] {
-  return cleaned.flatMap(({ labels }, i) => (i > 0 && zoneCountOf(labels) === i + 1 ? [i + 1] : []));
+/**
+ * Numbers above one whose zones have all survived clean-up and are somewhere wider than smoothing makes a sharp border. Narrower
+ * ones are the border itself: between two plateaus smoothing leaves a fringe of values that are neither's, and with little noise
+ * clusters of the fringe score high.
+ */
+function workableNumbers({ zones, grid }: { zones: readonly CellZones[]; grid: Grid }, smoothingM: number): number[] {
+  const fringe = { widthM: 2 * smoothingM + grid.cellSizeM, cellSizeM: grid.cellSizeM };
+  return zones.flatMap(({ labels }, i) => (i > 0 && zoneCountOf(labels) === i + 1 && allReachWidth(labels, grid.cols, fringe) ? [i + 1] : []));
 }

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { cellsPerLabel, highestLabel, majorityFiltered, meanPerLabel, numbersByMean, relabelled, renumberedByMean } from '../../shared/analysis/labels.ts';
-import { wideShare } from '../../shared/analysis/labelsWidth.ts';
+import { allReachWidth, wideShare } from '../../shared/analysis/labelsWidth.ts';
 import { randomIndex, seededRandom } from '../../shared/analysis/random.ts';
 import { cellsForArea, sieveByBorder, sieveByLargestNeighbour, smallPatches } from '../../shared/analysis/sieve.ts';
 import { eachContact, findPatches } from '../../shared/analysis/sievePatches.ts';
@@ -177,6 +177,14 @@ describe('the width of zones', () => {
     expect(wideShare(labels, cols, { widthM: 2, cellSizeM: 1 })[2]).toBe(1);
     expect(wideShare(labels, cols, { widthM: 4, cellSizeM: 1 })[2]).toBe(0);
     expect(wideShare(labels, cols, { widthM: 4, cellSizeM: 2 })[2]).toBe(1);
+  });
+
+  it('is reached by every zone, or not, as the share says', () => {
+    const { labels, cols } = picture('111221111 111221111 111221111 111221111 111221111 111221111 111221111');
+    for (const widthM of [2, 3, 4, 5]) expect(allReachWidth(labels, cols, { widthM, cellSizeM: 1 })).toBe(wideShare(labels, cols, { widthM, cellSizeM: 1 })[2]! > 0);
+    expect(allReachWidth(labels, cols, { widthM: 4, cellSizeM: 2 })).toBe(true);
+    const edge = picture('1 1 1 1');
+    expect(allReachWidth(edge.labels, edge.cols, { widthM: 6, cellSizeM: 1 })).toBe(true);
   });
 
   it('does not count the edge of the block against a zone', () => {

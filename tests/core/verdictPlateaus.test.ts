@@ -46,7 +46,7 @@ describe('two perfect plateaus with a straight border along the rows', () => {
   };
   const layer = (id: string, cells: Float32Array) => ({ id, type: 'vigour', role: 'evidence' as const, kind: 'number' as const, cells, weight: null });
 
-  it.each([0.001, 0.02])('are worth zoning, from one layer or two, with noise of %d', (noise) => {
+  it.each([0.001, 0.005, 0.02])('are worth zoning, from one layer or two, with noise of %d', (noise) => {
     expect(makeZoning({ grid, layers: [layer('a', step(noise, 1))] })).toMatchObject({ advisedK: 2, verdict: { verdict: 'several' } });
     expect(makeZoning({ grid, layers: [layer('a', step(noise, 1)), layer('b', step(noise, 2).map((value) => 80 * value))] })).toMatchObject({ advisedK: 2, verdict: { verdict: 'several' } });
   });

@@ -1,4 +1,3 @@
-import { AnalysisError } from '../analysis/analysisError.ts';
 import { HARD_MINIMUM } from './sampleSize.ts';
 
 /**
@@ -112,62 +111,4 @@ export function costTotal(zones: readonly AllocationZone[], variance: number): n
 function populationTerm(zones: readonly AllocationZone[]): number {
   const all = totalVines(zones);
   return sumOver(zones, (zone) => ((zone.finiteShare ?? 1) * (zone.vines / all) * zone.sd * zone.sd) / all);
-}
-
-/**
- * Whole numbers with the smallest variance for a total: every zone starts at its minimum, then each sample goes to
- * the largest N·S/√(n(n+1)). With `byCost` the square of that priority is divided by the zone's cost.
- */
-export function exactCounts(zones: readonly AllocationZone[], total: number, { byCost = false } = {}): number[] {
-  const counts = startAtMinimum(zones, total);
-  let left = total - counts.reduce((sum, n) => sum + n, 0);
-  while (left > 0) {
-    const next = bestNext(zones, counts, byCost);
-    if (next < 0) break;
-    counts[next]! += 1;
-    left -= 1;
-  }
-  return counts;
-}
-
-/** Zone whose next sample lowers the variance most (per cost); −1 when all are full. */
-function bestNext(zones: readonly AllocationZone[], counts: readonly number[], byCost: boolean): number {
-  let best = -1;
-  let bestGain = -1;
-  zones.forEach((zone, i) => {
-    const n = counts[i]!;
-    if (n >= maximumOf(zone)) return;
-    const gain = n === 0 ? Infinity : (zone.vines * zone.sd) ** 2 / (n * (n + 1)) / (byCost ? costOf(zone) : 1);
-    if (gain > bestGain) {
-      best = i;
-      bestGain = gain;
-    }
-  });
-  return best;
-}
-
-/** The minimum of every zone, or a sentence when the total cannot hold them: raising it silently would hide the cost. */
-export function startAtMinimum(zones: readonly AllocationZone[], total: number): number[] {
-  const counts = zones.map(minimumOf);
-  const needed = counts.reduce((sum, n) => sum + n, 0);
-  if (needed > total) {
-    throw new AnalysisError('total_below_minimum', `${zones.length} zones need at least ${needed} samples in all to keep their minimum; ${total} were asked for. Allow ${needed} or fewer zones.`);
-  }
-  return counts;
-}
-
-/** Whole numbers as near as possible to unrounded shares within each zone's minimum and maximum. */
-export function nearestCounts(zones: readonly AllocationZone[], shares: readonly number[], total: number): number[] {
-  const counts = startAtMinimum(zones, total);
-  let left = total - counts.reduce((sum, n) => sum + n, 0);
-  while (left > 0) {
-    let best = -1;
-    zones.forEach((zone, i) => {
-      if (counts[i]! < maximumOf(zone) && (best < 0 || shares[i]! - counts[i]! > shares[best]! - counts[best]!)) best = i;
-    });
-    if (best < 0) break;
-    counts[best]! += 1;
-    left -= 1;
-  }
-  return counts;
 }

@@ -1,4 +1,5 @@
-import { exactCounts, nearestCounts, proportionalShares, type AllocationZone } from './allocate.ts';
+import { proportionalShares, type AllocationZone } from './allocate.ts';
+import { exactCounts, nearestCounts } from './wholeCounts.ts';
 
 /** How a total is shared between zones. Counts are whole, keep each zone's minimum and never exceed its vines. */
 export interface AllocationMethod {

@@ -1,5 +1,6 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
-import { planCounts, type PlanCounts, type PlanQuestion } from './planCounts.ts';
+import { planCounts, type PlanCounts } from './planCounts.ts';
+import type { PlanQuestion } from './planQuestion.ts';
 
 /**
  * The plan turned round: what can be known with this time, money or number of vines. All margins are widened or

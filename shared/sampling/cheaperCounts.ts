@@ -83,5 +83,7 @@ function mendedBelow(counts: number[], ask: CheaperAsk & { apart: number; below:
 }
 
 function costOf(costs: readonly number[], counts: readonly number[]): number {
-  return costs.reduce((sum, cost, i) => sum + cost * counts[i]!, 0);
+  let sum = 0;
+  for (let i = 0; i < costs.length; i++) sum += costs[i]! * counts[i]!;
+  return sum;
 }

@@ -1,7 +1,8 @@
 import { smallestScale } from './budget.ts';
 import type { Division } from './divideZone.ts';
 import type { Margin } from './margins.ts';
-import { planCounts, type PlanCounts, type PlanQuestion } from './planCounts.ts';
+import { planCounts, type PlanCounts } from './planCounts.ts';
+import type { PlanQuestion } from './planQuestion.ts';
 
 /**
  * When a plan asks for more than a day's work or more vines than a zone should take, what would help, in figures.

@@ -1,7 +1,8 @@
 import { totalVines } from './allocate.ts';
 import { blockPrecision } from './blockSampleSize.ts';
 import { matchMargin } from './margins.ts';
-import { blockDemand, type PlanCounts, type PlanQuestion } from './planCounts.ts';
+import type { PlanCounts } from './planCounts.ts';
+import { blockDemand, type PlanQuestion } from './planQuestion.ts';
 import { criticalT } from './quantiles.ts';
 import { halfWidth as halfWidthOf, sampleSizeSteps, steinSampleSize } from './sampleSize.ts';
 import { spreadOf } from './severalMeasures.ts';

@@ -59,7 +59,7 @@ export function criticalT(confidence: number, df: number): number {
 }
 
 /** Searches and running checks ask for the same few factors thousands of times; each is worked out once. */
-const REMEMBERED_DF = 400;
+const REMEMBERED_DF = 4000;
 const REMEMBERED_LEVELS = 16;
 const remembered = new Map<number, Float64Array>();
 

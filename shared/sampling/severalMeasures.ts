@@ -74,29 +74,26 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
     checkConfidence(confidence);
   }
   let targets = measures.map(({ margin, confidence }) => targetVariance(margin, criticalZ(confidence)));
+  const parts = measures.map((measure) => varianceTerms(zones, measure));
   let answer = solve(zones, measures, targets);
   // The t factor depends on the counts that it decides; a few rounds settle it, always on the safe side.
   for (let round = 0; factor === 't' && round < 12; round++) {
-    const strict = measures.map((measure, j) => {
-      const { margin, confidence } = measure;
-      const df = degreesOfFreedom(zones, measure, answer.counts);
-      return Math.min(targets[j]!, targetVariance(margin, criticalT(confidence, df)));
-    });
-    if (strict.every((target, j) => varianceOf(zones, measures[j]!, answer.counts) <= target * (1 + 1e-12))) break;
+    const strict = measures.map((measure, j) => Math.min(targets[j]!, ownTarget(measure, parts[j]!, answer.counts)));
+    if (strict.every((target, j) => varianceOf(parts[j]!, answer.counts) <= target * KEPT)) break;
     targets = strict;
     answer = solve(zones, measures, targets);
   }
   if (factor === 't' && answer.reached) {
     const counts = cheapestAround(zones, measures, answer.counts);
     answer = { ...answer, counts, cost: counts.reduce((sum, n, i) => sum + n * costOf(zones[i]!), 0) };
-    targets = measures.map((measure) => ownTarget(zones, measure, counts));
+    targets = measures.map((measure, j) => ownTarget(measure, parts[j]!, counts));
   }
   const order = answer.weights.map((weight, j) => ({ weight, code: measures[j]!.code })).sort((a, b) => b.weight - a.weight);
   const overMinimum = answer.counts.some((n, i) => n > minimumOf({ ...zones[i]!, sd: 0 }));
   return {
     counts: answer.counts,
     cost: answer.cost,
-    ratios: measures.map((measure, j) => varianceOf(zones, measure, answer.counts) / targets[j]!),
+    ratios: parts.map((part, j) => varianceOf(part, answer.counts) / targets[j]!),
     binding: overMinimum ? order.filter(({ weight }) => weight >= DECIDES).map(({ code }) => code) : [],
     relaxed: answer.relaxed,
     lowerBound: answer.lowerBound,
@@ -108,19 +105,28 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
 const costOf = ({ cost = 1 }: SharedZone): number => cost;
 
 /** Variance that just keeps the margin with the factor t of these counts. */
-function ownTarget(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number {
-  return targetVariance(measure.margin, criticalT(measure.confidence, degreesOfFreedom(zones, measure, counts)));
+function ownTarget({ margin, confidence }: MeasureDemand, parts: VarianceOf, counts: readonly number[]): number {
+  return targetVariance(margin, criticalT(confidence, degreesOfFreedom(parts, counts)));
+}
+
+/** Whether that target is kept. Factors of whole degrees of freedom, worked out once, settle it nearly always. */
+function keepsOwnTarget({ margin, confidence }: MeasureDemand, parts: VarianceOf, counts: readonly number[]): boolean {
+  const variance = varianceOf(parts, counts);
+  // Student's t is never below z, which is quick to ask first.
+  if (variance > targetVariance(margin, criticalZ(confidence)) * KEPT) return false;
+  const df = degreesOfFreedom(parts, counts);
+  const keptAt = (rounded: number) => variance <= targetVariance(margin, criticalT(confidence, rounded)) * KEPT;
+  if (df >= 1 && keptAt(Math.floor(df))) return true;
+  return keptAt(Math.ceil(df)) && keptAt(df);
 }
 
 /** The rounds above stay on the safe side, so a set with a factor of its own may be a few samples cheaper than `counts`. */
 function cheapestAround(zones: readonly SharedZone[], measures: readonly MeasureDemand[], counts: readonly number[]): number[] {
   const limits = zones.map((zone) => ({ ...zone, sd: 0 }));
-  const start = measures.map((measure) => ownTarget(zones, measure, counts));
-  const used = (tried: readonly number[]) => Math.max(...measures.map((measure, j) => varianceOf(zones, measure, tried) / start[j]!));
-  const known = measures.map(({ margin, confidence }) => targetVariance(margin, criticalZ(confidence)) * KEPT);
-  // Student's t is never below z, which is quick to ask first.
-  const keeps = (tried: readonly number[]) =>
-    measures.every((measure, j) => varianceOf(zones, measure, tried) <= known[j]!) && measures.every((measure) => varianceOf(zones, measure, tried) <= ownTarget(zones, measure, tried) * KEPT);
+  const parts = measures.map((measure) => varianceTerms(zones, measure));
+  const start = measures.map((measure, j) => ownTarget(measure, parts[j]!, counts));
+  const used = (tried: readonly number[]) => parts.reduce((most, part, j) => Math.max(most, varianceOf(part, tried) / start[j]!), -Infinity);
+  const keeps = (tried: readonly number[]) => measures.every((measure, j) => keepsOwnTarget(measure, parts[j]!, tried));
   return cheaperCounts(counts, { costs: zones.map(costOf), minimum: limits.map(minimumOf), maximum: limits.map(maximumOf), used, keeps });
 }
 
@@ -148,19 +154,38 @@ function termOf({ vines }: SharedZone, { finiteShares }: MeasureDemand, i: numbe
   return finiteTerm({ vines, finiteShare: finiteShares?.[i] });
 }
 
-function varianceParts(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number[] {
+/** What one measure's variance is made of: Σ term·(1/n − rest) over the zones. */
+interface VarianceOf {
+  readonly terms: readonly number[];
+  readonly rests: readonly number[];
+  readonly dfs: readonly (number | null)[];
+}
+
+function varianceTerms(zones: readonly SharedZone[], measure: MeasureDemand): VarianceOf {
   const all = totalVines(zones);
-  return zones.map((zone, i) => ((zone.vines / all) * measure.spreads[i]!) ** 2 * Math.max(0, 1 / counts[i]! - termOf(zone, measure, i)));
+  return {
+    terms: zones.map((zone, i) => ((zone.vines / all) * measure.spreads[i]!) ** 2),
+    rests: zones.map((zone, i) => termOf(zone, measure, i)),
+    dfs: zones.map((_, i) => measure.spreadDfs?.[i] ?? null),
+  };
 }
 
-function varianceOf(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number {
-  return varianceParts(zones, measure, counts).reduce((sum, part) => sum + part, 0);
+/** Plain loops here and below: a search asks thousands of times while a slider moves. */
+function varianceOf({ terms, rests }: VarianceOf, counts: readonly number[]): number {
+  let variance = 0;
+  for (let i = 0; i < terms.length; i++) variance += terms[i]! * Math.max(0, 1 / counts[i]! - rests[i]!);
+  return variance;
 }
 
-function degreesOfFreedom(zones: readonly SharedZone[], measure: MeasureDemand, counts: readonly number[]): number {
-  const parts = varianceParts(zones, measure, counts);
-  const variance = parts.reduce((sum, part) => sum + part, 0);
-  const below = parts.reduce((sum, part, i) => (part === 0 ? sum : sum + (part * part) / (measure.spreadDfs?.[i] ?? counts[i]! - 1)), 0);
+/** Satterthwaite 1946, as in blockSampleSize.ts. */
+function degreesOfFreedom({ terms, rests, dfs }: VarianceOf, counts: readonly number[]): number {
+  let variance = 0;
+  let below = 0;
+  for (let i = 0; i < terms.length; i++) {
+    const part = terms[i]! * Math.max(0, 1 / counts[i]! - rests[i]!);
+    variance += part;
+    if (part !== 0) below += (part * part) / (dfs[i] ?? counts[i]! - 1);
+  }
   return below === 0 ? Infinity : (variance * variance) / below;
 }
 

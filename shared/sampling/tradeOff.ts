@@ -1,5 +1,6 @@
 import { AnalysisError } from '../analysis/analysisError.ts';
-import { planCounts, type PlanQuestion } from './planCounts.ts';
+import { planCounts } from './planCounts.ts';
+import type { PlanQuestion } from './planQuestion.ts';
 
 /** Counts and hours against the margin, one curve for each confidence, for one measure of a plan. */
 export interface TradeOffPoint {

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { seededRandom } from '../../shared/analysis/random.ts';
-import { allocationVariance, costShares, costSharesForBudget, costTotal, exactCounts, neymanShares, neymanTotal, proportionalShares, proportionalTotal, targetVariance, type AllocationZone } from '../../shared/sampling/allocate.ts';
+import { allocationVariance, costShares, costSharesForBudget, costTotal, neymanShares, neymanTotal, proportionalShares, proportionalTotal, targetVariance, type AllocationZone } from '../../shared/sampling/allocate.ts';
+import { exactCounts, nearestCounts } from '../../shared/sampling/wholeCounts.ts';
 import { allocationMethod, allocationMethods } from '../../shared/sampling/allocationMethods.ts';
 import { blockPrecision, blockSampleSize } from '../../shared/sampling/blockSampleSize.ts';
 import { leastCostCounts } from '../../shared/sampling/leastCost.ts';
@@ -97,6 +98,34 @@ describe('sharing a total between zones', () => {
       });
     }
     expect(sum(allocationMethod('spread').counts(zones, 5000))).toBe(1064);
+  });
+
+  it('gives most samples at once and ends where one by one would', () => {
+    const random = seededRandom(17);
+    const oneByOne = (zones: readonly AllocationZone[], total: number, worth: (i: number, n: number) => number) => {
+      const counts = zones.map(({ minimum = 2, maximum, vines }) => Math.min(minimum, maximum ?? vines, vines));
+      while (sum(counts) < total) {
+        const open = zones.map((_, i) => i).filter((i) => counts[i]! < Math.min(zones[i]!.maximum ?? zones[i]!.vines, zones[i]!.vines));
+        if (open.length === 0) break;
+        counts[open.reduce((best, i) => (worth(i, counts[i]!) > worth(best, counts[best]!) ? i : best))]! += 1;
+      }
+      return counts;
+    };
+    for (let trial = 0; trial < 150; trial++) {
+      // Alike zones make ties, zones without spread and tight limits make corners.
+      const alike = trial % 5 === 0;
+      const zones: AllocationZone[] = Array.from({ length: 1 + (trial % 12) }, (_, i) => ({
+        vines: alike ? 200 : 3 + Math.floor(random() ** 3 * 900), sd: alike ? 1 : i % 7 === 6 ? 0 : 10 ** (2 * random() - 1), cost: alike ? 30 : 10 + 300 * random(),
+        minimum: Math.floor(random() * 6), ...(random() < 0.3 ? { maximum: 2 + Math.floor(random() * 200) } : {}),
+      }));
+      const least = sum(zones.map(({ minimum = 2, maximum, vines }) => Math.min(minimum, maximum ?? vines, vines)));
+      const total = least + Math.floor(random() * 700);
+      const shares = zones.map(({ vines }) => (total * vines) / sum(zones.map((zone) => zone.vines)));
+      const gain = (i: number, n: number) => (n === 0 ? Infinity : (zones[i]!.vines * zones[i]!.sd) ** 2 / (n * (n + 1)));
+      expect(exactCounts(zones, total)).toEqual(oneByOne(zones, total, gain));
+      expect(exactCounts(zones, total, { byCost: true })).toEqual(oneByOne(zones, total, (i, n) => gain(i, n) / zones[i]!.cost!));
+      expect(nearestCounts(zones, shares, total)).toEqual(oneByOne(zones, total, (i, n) => shares[i]! - n));
+    }
   });
 
   it('says what the minimum costs instead of raising the total', () => {

@@ -4,7 +4,9 @@ import { planForBudget, spent, type Budget } from '../../shared/sampling/budget.
 import { bestDivision, mergedSpread, partMeans, type LocatedReading } from '../../shared/sampling/divideZone.ts';
 import { adviseImpractical } from '../../shared/sampling/impractical.ts';
 import type { Spread } from '../../shared/sampling/margins.ts';
-import { planCounts, planMethods, type PlanMeasure, type PlanQuestion } from '../../shared/sampling/planCounts.ts';
+import { planCounts } from '../../shared/sampling/planCounts.ts';
+import type { PlanMeasure, PlanQuestion } from '../../shared/sampling/planQuestion.ts';
+import { planAllocations } from '../../shared/contracts/planChoices.ts';
 import { mergedFigures } from '../../shared/sampling/mergedZones.ts';
 import { marginLadder, tradeOffCurves } from '../../shared/sampling/tradeOff.ts';
 
@@ -44,7 +46,7 @@ describe('counts of a plan', () => {
   });
 
   it('needs far fewer vines when only the mean of the block must be known', () => {
-    for (const method of planMethods) {
+    for (const method of planAllocations) {
       const plan = planCounts({ ...QUESTION, question: 'block', method });
       expect(plan.visits).toBeLessThan(50);
       plan.measures.forEach(({ blockHalfWidth, reached }, j) => {

@@ -89,6 +89,8 @@ const reviewedLot = z.object({
 
 const compared = z.object({
   measure: z.string(),
+  /** Readings of fruit; of yield the scale, bins counted on mixed loads, loads shared out (which say nothing of zones), or the forecast. */
+  basis: z.enum(['readings', 'weighed', 'bins', 'shared', 'expected']),
   unit: z.string(),
   /** Day of the readings; null for tonnes. */
   on: z.string().nullable(),

@@ -3,6 +3,7 @@ import { letterParts, type SeasonLetter } from '../../server/exporters/report/se
 import { seededRandom } from '../../shared/analysis/random.ts';
 import { errorParts } from '../../shared/cellar/errorParts.ts';
 import { learnFactor, nextLot } from '../../shared/cellar/learnFactor.ts';
+import { weighedYield } from '../../shared/cellar/weighedYield.ts';
 import { zonesCompared, zoneVerdict } from '../../shared/cellar/zonesMattered.ts';
 import { falseAlarms, forecastCoverage } from '../bench/ripening.ts';
 
@@ -63,6 +64,13 @@ describe('whether zones mattered', () => {
     expect(four.differ).toBe(false);
   });
 
+  it('takes a weighed zone as every vine picked, with the scale and the bins', () => {
+    const apart = weighedYield({ kg: 8000, areaHa: 1, vines: 1600, bins: 0 });
+    expect(apart.value).toBe(8);
+    expect(apart.standardError).toBeCloseTo(8 * Math.sqrt(0.01 ** 2 + 0.005 ** 2), 12);
+    expect(weighedYield({ kg: 8000, areaHa: 1, vines: 1600, bins: 16 }).standardError).toBeCloseTo(8 * Math.sqrt(0.01 ** 2 + 0.005 ** 2 + 0.025 ** 2), 12);
+  });
+
   it('keeps, merges or retires, and says when it cannot tell', () => {
     expect(zoneVerdict({ zones: 3, thisSeason: true, lastSeason: false })).toBe('keep');
     expect(zoneVerdict({ zones: 3, thisSeason: false, lastSeason: null })).toBe('merge');
@@ -79,7 +87,7 @@ describe('the season letter', () => {
     language: 'en', size: 'A4', units: 'metric', now: new Date('2026-12-01T12:00:00Z'), timeZone: 'UTC', estateName: 'Low House', seasonName: '2026',
     block: {
       blockId: 'b', blockName: 'West Plot', zones: 2, lastSeason: null, oneLot: true, readings: 240, hours: 5.2, errorParts: [], verdict: 'merge', sugar: { taken: 40, needed: 24 },
-      measures: [{ measure: 'brix', unit: '°Brix', on: '2026-09-14', n: 40, lowest: 1, highest: 2, least: 22.1, most: 22.4, difference: 0.3, halfWidth: 0.8, p: 0.4, differ: false, betweenShare: 0.02 }],
+      measures: [{ measure: 'brix', basis: 'readings', unit: '°Brix', on: '2026-09-14', n: 40, lowest: 1, highest: 2, least: 22.1, most: 22.4, difference: 0.3, halfWidth: 0.8, p: 0.4, differ: false, betweenShare: 0.02 }],
     },
     zones: [1, 2].map((zone) => ({ blockId: 'b', blockName: 'West Plot', zone, forecastOn: '2026-08-20', forecast: figure(10, 3), actualT: 11, how: 'shared' as const, held: true })),
     errorParts: [{ part: 'rest', tonnes: 2 }],
@@ -92,6 +100,13 @@ describe('the season letter', () => {
     expect(said).toContain('All of it was picked into one lot, so the zones made no wine of their own.');
     expect(said).toContain('Knowing it took about 5 hours at the vine for 240 readings, without the walk.');
     expect(said.at(-1)).toBe('Next season take fewer: on the last visit 40 readings of sugar were taken where 24 would have kept the margin.');
+  });
+
+  it('speaks of weighed yield where the scale had the zones, and of none where loads were shared out', () => {
+    const line = (basis: 'weighed' | 'shared') => ({ ...letter.block.measures[0]!, measure: 'yield', basis, unit: 't/ha', difference: 1.3, halfWidth: basis === 'shared' ? null : 0.4, differ: basis === 'shared' ? null : true });
+    const said = (basis: 'weighed' | 'shared') => letterParts({ ...letter, block: { ...letter.block, measures: [line(basis)] } })[1]!;
+    expect(said('weighed')[0]).toBe('Weighed yield differed between zones by 1.3 ± 0.4 t/ha: more than luck explains.');
+    expect(said('shared').join(' ')).not.toMatch(/yield/);
   });
 
   it('does not pretend to a test that was not made', () => {

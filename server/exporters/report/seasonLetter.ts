@@ -41,7 +41,10 @@ export async function seasonLetter(letter: SeasonLetter): Promise<Buffer> {
 export function letterParts(letter: SeasonLetter): string[][] {
   const texts = seasonLetterTexts[letter.language];
   const { block } = letter;
-  const zones = [...block.measures.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: texts.measure[measure.measure as keyof typeof texts.measure], difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
+  // A load that was shared out says nothing of how zones differ.
+  const told = block.measures.filter(({ basis }) => basis !== 'shared');
+  const nameOf = ({ measure, basis }: (typeof told)[number]) => texts.measure[(basis === 'weighed' || basis === 'bins' ? 'weighed' : measure) as keyof typeof texts.measure];
+  const zones = [...told.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: nameOf(measure), difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
   if (block.zones > 1 && block.oneLot) zones.push(texts.oneLot);
   const cost = [filled(texts.cost, { hours: figure(letter, block.hours, 0), readings: figure(letter, block.readings, 0) })];
   if (block.sugar) {

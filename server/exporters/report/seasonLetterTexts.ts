@@ -11,7 +11,7 @@ export const seasonLetterTexts = {
     part: { vines: 'the vine count', clusters: 'the cluster count', clusterWeight: 'the cluster weight', growth: 'the growth factor', losses: 'losses', rest: 'what was not measured again and cannot be told apart' },
     differ: '{measure} differed between zones by {difference}: more than luck explains.',
     same: '{measure} could not be told apart between zones ({difference}).',
-    measure: { brix: 'Sugar', ph: 'pH', ta: 'Acidity', yield: 'Expected yield' },
+    measure: { brix: 'Sugar', ph: 'pH', ta: 'Acidity', yield: 'Expected yield', weighed: 'Weighed yield' },
     verdict: {
       keep: 'Keep the zones and test them again next season.',
       merge: 'No difference could be told this season. Consider one block, and test once more before you give the zones up.',
@@ -37,7 +37,7 @@ export const seasonLetterTexts = {
     part: { vines: 'el recuento de cepas', clusters: 'el recuento de racimos', clusterWeight: 'el peso del racimo', growth: 'el factor de crecimiento', losses: 'las pérdidas', rest: 'lo que no se volvió a medir y no se puede separar' },
     differ: '{measure} difirió entre zonas en {difference}: más de lo que explica el azar.',
     same: '{measure} no se pudo distinguir entre zonas ({difference}).',
-    measure: { brix: 'El azúcar', ph: 'El pH', ta: 'La acidez', yield: 'El rendimiento previsto' },
+    measure: { brix: 'El azúcar', ph: 'El pH', ta: 'La acidez', yield: 'El rendimiento previsto', weighed: 'El rendimiento pesado' },
     verdict: {
       keep: 'Mantenga las zonas y póngalas a prueba otra vez la próxima campaña.',
       merge: 'Esta campaña no se distinguió ninguna diferencia. Piense en una sola parcela y pruebe una vez más antes de dejar las zonas.',
@@ -63,7 +63,7 @@ export const seasonLetterTexts = {
     part: { vines: 'le compte de ceps', clusters: 'le compte de grappes', clusterWeight: 'le poids de grappe', growth: 'le facteur de croissance', losses: 'les pertes', rest: 'ce qui n’a pas été remesuré et ne peut être séparé' },
     differ: '{measure} différait entre zones de {difference} : plus que le hasard n’explique.',
     same: '{measure} n’a pu être distingué entre zones ({difference}).',
-    measure: { brix: 'Le sucre', ph: 'Le pH', ta: 'L’acidité', yield: 'Le rendement attendu' },
+    measure: { brix: 'Le sucre', ph: 'Le pH', ta: 'L’acidité', yield: 'Le rendement attendu', weighed: 'Le rendement pesé' },
     verdict: {
       keep: 'Gardez les zones et éprouvez-les encore la campagne prochaine.',
       merge: 'Aucune différence n’a pu être dite cette campagne. Pensez à une seule parcelle, et testez encore une fois avant d’abandonner les zones.',
@@ -89,7 +89,7 @@ export const seasonLetterTexts = {
     part: { vines: 'il conteggio delle viti', clusters: 'il conteggio dei grappoli', clusterWeight: 'il peso del grappolo', growth: 'il fattore di crescita', losses: 'le perdite', rest: 'ciò che non è stato rimisurato e non si può separare' },
     differ: '{measure} differiva tra le zone di {difference}: più di quanto spieghi il caso.',
     same: '{measure} non si è potuto distinguere tra le zone ({difference}).',
-    measure: { brix: 'Lo zucchero', ph: 'Il pH', ta: 'L’acidità', yield: 'La resa attesa' },
+    measure: { brix: 'Lo zucchero', ph: 'Il pH', ta: 'L’acidità', yield: 'La resa attesa', weighed: 'La resa pesata' },
     verdict: {
       keep: 'Tenere le zone e riprovarle la prossima stagione.',
       merge: 'In questa stagione non si è distinta alcuna differenza. Pensare a un solo appezzamento e provare ancora una volta prima di lasciare le zone.',
@@ -115,7 +115,7 @@ export const seasonLetterTexts = {
     part: { vines: 'a contagem de videiras', clusters: 'a contagem de cachos', clusterWeight: 'o peso do cacho', growth: 'o fator de crescimento', losses: 'as perdas', rest: 'o que não voltou a ser medido e não se pode separar' },
     differ: '{measure} diferiu entre zonas em {difference}: mais do que o acaso explica.',
     same: '{measure} não se pôde distinguir entre zonas ({difference}).',
-    measure: { brix: 'O açúcar', ph: 'O pH', ta: 'A acidez', yield: 'O rendimento esperado' },
+    measure: { brix: 'O açúcar', ph: 'O pH', ta: 'A acidez', yield: 'O rendimento esperado', weighed: 'O rendimento pesado' },
     verdict: {
       keep: 'Mantenha as zonas e ponha-as à prova na próxima campanha.',
       merge: 'Nesta campanha não se distinguiu diferença. Pense numa só parcela e teste mais uma vez antes de largar as zonas.',

@@ -61,7 +61,7 @@ export async function seasonReview(access: Access, options: { today: string }): 
     byBlock: [...groupBy(lastOf, ({ blockName }) => blockName)].map(([blockName, group]) => ({ blockName, ...summaryOf(group) })),
     byDate: [...groupBy(zones, ({ forecastOn }) => forecastOn)].sort(([a], [b]) => a.localeCompare(b)).map(([forecastOn, group]) => ({ forecastOn, ...summaryOf(group) })),
     errorParts: parts,
-    blocks: await Promise.all(ground.blocks.map(async (block) => ({ ...(await zoneQuestion(estateId, ground, block)), errorParts: partsOf(block.ground.block.id) }))),
+    blocks: await Promise.all(ground.blocks.map(async (block) => ({ ...(await zoneQuestion(estateId, ground, { block, tickets: counting })), errorParts: partsOf(block.ground.block.id) }))),
   };
 }
 

@@ -1,22 +1,16 @@
 import { scaled, type Dependent } from '../../../shared/cellar/dependent.ts';
 import { errorParts, type ErrorPart, type ErrorShare } from '../../../shared/cellar/errorParts.ts';
 import { lotTonnes } from '../../../shared/cellar/lots.ts';
-import type { ReviewView, TicketSplit } from '../../../shared/contracts/tickets.ts';
-import { isBearing, type BlockVines } from '../../ground/blockVines.ts';
+import type { ReviewView } from '../../../shared/contracts/tickets.ts';
+import type { BlockVines } from '../../ground/blockVines.ts';
 import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
 import { figureOf, zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
+import { shareIn, weighedOf } from './weighedZones.ts';
 
 type ReviewedZone = ReviewView['zones'][number];
 const shownDates = 4;
 const yieldMeasures = ['clusterCount', 'clusterWeight'];
-
-interface Weighed {
-  kg: number;
-  how: 'measured' | 'shared';
-  /** Part of the zone's bearing vines that was picked into weighed lots. */
-  share: number;
-}
 
 /**
  * Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. What reached
@@ -34,7 +28,7 @@ export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]
   const zones = all.map(({ block, number, weighed, forecastOn, outlook }): ReviewedZone => {
     const forecast = figureOf(scaled(outlook.tonnes, weighed.share), { n: null, kind: 'estimated' });
     const actualT = weighed.kg / 1000;
-    return { blockId: block.ground.block.id, blockName: block.ground.block.name, zone: number, forecastOn, forecast, actualT, how: weighed.how, held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth };
+    return { blockId: block.ground.block.id, blockName: block.ground.block.name, zone: number, forecastOn, forecast, actualT, how: weighed.by === 'scale' ? 'measured' : 'shared', held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth };
   });
   const shares = all.filter(({ isLast }) => isLast).map(({ block, at, outlook, weighed }) => ({ blockId: block.ground.block.id, own: errorParts({ forecastT: outlook.tonnes.value * weighed.share, actualT: weighed.kg / 1000, ratios: ratiosOf(outlook, block.outlooks[at]!) }) }));
   return { zones, parts: summed(shares.flatMap(({ own }) => own)), partsOf: (blockId) => summed(shares.filter((one) => one.blockId === blockId).flatMap(({ own }) => own)) };
@@ -73,43 +67,6 @@ export function lotForecast(ground: BoardGround, lot: number, how: { day: string
     return shares.flatMap((share, at) => (share === 0 ? [] : [{ tonnes: scaled(outlooks[at]!.tonnes, share) }]));
   });
   return parts.length === 0 ? null : lotTonnes(parts);
-}
-
-/** Kilograms of a zone over all lots: by the splits of tickets, else by expected tonnes within the lot. */
-function weighedOf(ground: BoardGround, tickets: readonly ScaleTicket[], where: { block: BoardBlock; at: number }): Weighed | null {
-  const { block, at } = where;
-  const zone = block.zones[at]!;
-  let [kg, share] = [0, 0];
-  let how: Weighed['how'] = 'measured';
-  ground.lots.forEach((lot, index) => {
-    const own = shareIn(block, at, index);
-    const counting = tickets.filter((ticket) => ticket.lotId === lot.id);
-    if (own === 0 || counting.length === 0) return;
-    share += own;
-    for (const ticket of counting) {
-      const split = (ticket.split as TicketSplit[]).filter((part) => part.blockId === block.ground.block.id && part.zoneNumber === zone.number);
-      if ((ticket.split as TicketSplit[]).length > 0) {
-        kg += split.reduce((sum, part) => sum + part.kg, 0);
-        if (split.some((part) => part.how === 'shared')) how = 'shared';
-        continue;
-      }
-      const expected = own * block.outlooks[at]!.tonnes.value;
-      const whole = expectedOf(ground, index);
-      kg += whole > 0 ? (ticket.netKg * expected) / whole : 0;
-      if (expected < whole - 1e-9) how = 'shared';
-    }
-  });
-  return share > 0 && kg > 0 ? { kg, how, share } : null;
-}
-
-function expectedOf(ground: BoardGround, lot: number): number {
-  return ground.blocks.reduce((sum, block) => sum + block.zones.reduce((inside, _, at) => inside + shareIn(block, at, lot) * block.outlooks[at]!.tonnes.value, 0), 0);
-}
-
-function shareIn(block: BoardBlock, at: number, lot: number): number {
-  const { number } = block.zones[at]!;
-  const bearing = [...block.zoneOf.keys()].filter((vine) => block.zoneOf[vine] === number && block.lotOf[vine] === lot && isBearing(block.ground.states[vine]!)).length;
-  return bearing === 0 ? 0 : bearing / block.outlooks[at]!.bearing;
 }
 
 /**

@@ -1,12 +1,15 @@
 import { lotLikeness } from '../../../shared/cellar/lotLikeness.ts';
-import { zonesCompared, zoneVerdict } from '../../../shared/cellar/zonesMattered.ts';
+import { weighedYield } from '../../../shared/cellar/weighedYield.ts';
+import { zonesCompared, zoneVerdict, type ZoneMean } from '../../../shared/cellar/zonesMattered.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
 import { ADVISED_MINIMUM, sampleSize } from '../../../shared/sampling/sampleSize.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
+import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Season } from '../../models/Season.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
+import { weighedOf } from './weighedZones.ts';
 import { boardConfidence } from './zoneOutlook.ts';
 
 type Compared = ReviewView['blocks'][number]['measures'][number];
@@ -14,9 +17,9 @@ const fruit = ['brix', 'ph', 'ta'] as const;
 /** Sugar, pH, acidity and tonnes. */
 const asked = fruit.length + 1;
 
-/** Did the zones of a block matter, beside one block as a whole: by measure, with the hours that knowing it took. */
-export async function zoneQuestion(estateId: string, ground: BoardGround, block: BoardBlock): Promise<Omit<ReviewView['blocks'][number], 'errorParts'>> {
-  const measures = [...fruit.flatMap((code) => compareFruit(ground, block, code) ?? []), ...(compareYield(block) ?? [])];
+/** Did the zones of a block matter, beside one block as a whole: by measure, with the hours that knowing it took. `tickets`: those that count. */
+export async function zoneQuestion(estateId: string, ground: BoardGround, { block, tickets }: { block: BoardBlock; tickets: readonly ScaleTicket[] }): Promise<Omit<ReviewView['blocks'][number], 'errorParts'>> {
+  const measures = [...fruit.flatMap((code) => compareFruit(ground, block, code) ?? []), ...compareYields(ground, block, tickets)];
   const thisSeason = judged(measures);
   const lastSeason = thisSeason === false ? await judgedBefore(estateId, ground, block) : null;
   const taken = block.readings.filter(({ zone, excludedReason }) => zone > 0 && excludedReason === null);
@@ -61,11 +64,27 @@ function compareMeans(means: readonly { zone: number; mean: VisitMean; weight: n
   const values = same.map(({ mean }) => mean.mean);
   const weighted = same.filter(({ weight }) => weight > 0);
   const betweenShare = weighted.length < 2 ? null : lotLikeness(weighted.map(({ zone, mean, weight }) => ({ zone: String(zone), weight, mean: mean.estimate, sd: mean.sd }))).betweenShare;
-  return { measure: about.code, unit: about.unit, on, n: same.reduce((sum, { mean }) => sum + mean.n, 0), least: Math.min(...values), most: Math.max(...values), betweenShare, ...found };
+  return { measure: about.code, basis: 'readings', unit: about.unit, on, n: same.reduce((sum, { mean }) => sum + mean.n, 0), least: Math.min(...values), most: Math.max(...values), betweenShare, ...found };
+}
+
+/** By the scale where it had every zone; as expected besides where it was not asked, or had the zones together. */
+function compareYields(ground: BoardGround, block: BoardBlock, tickets: readonly ScaleTicket[]): Compared[] {
+  const weighed = compareWeighed(ground, block, tickets);
+  const expected = weighed === null || weighed.basis === 'shared' ? compareExpected(block) : null;
+  return [weighed, expected].flatMap((found) => found ?? []);
+}
+
+/** Tonnes a hectare as weighed; null unless every zone was. A load shared out by rows or expectation says nothing of how zones differ. */
+function compareWeighed(ground: BoardGround, block: BoardBlock, tickets: readonly ScaleTicket[]): Compared | null {
+  const found = block.zones.flatMap((_, at) => weighedOf(ground, tickets, { block, at }) ?? []);
+  if (found.length < 2 || found.length < block.zones.length) return null;
+  const basis = found.some(({ by }) => by === 'shared') ? 'shared' : found.some(({ by }) => by === 'bins') ? 'bins' : 'weighed';
+  const means = found.map(({ kg, share, bins }, at) => ({ zone: block.zones[at]!.number, n: 0, sd: Number.NaN, estimate: weighedYield({ kg, areaHa: (share * block.zones[at]!.areaM2) / 10_000, vines: share * block.outlooks[at]!.bearing, bins }) }));
+  return yieldLine(means, basis);
 }
 
 /** Tonnes a hectare as expected. Growth and losses are the same for all zones of a block and drop out of their difference. */
-function compareYield({ zones, outlooks }: BoardBlock): Compared[] | null {
+function compareExpected({ zones, outlooks }: BoardBlock): Compared | null {
   const means = outlooks.flatMap((outlook, at) => {
     const { areaM2 } = zones[at]!;
     const own = ['clusters', 'clusterWeight'].map((name) => outlook.parts.find(({ part }) => part === name)!);
@@ -76,11 +95,17 @@ function compareYield({ zones, outlooks }: BoardBlock): Compared[] | null {
     const n = Math.min(...own.map((one) => one.n ?? 0));
     return [{ zone: outlook.zone, n, sd: Number.NaN, estimate: { value, standardError: value * Math.sqrt(total * share), df: Math.max(1, n - 1) } }];
   });
-  if (means.length < 2 || means.length < zones.length) return null;
+  return means.length < 2 || means.length < zones.length ? null : yieldLine(means, 'expected');
+}
+
+function yieldLine(means: readonly ZoneMean[], basis: Exclude<Compared['basis'], 'readings'>): Compared {
   const found = zonesCompared(means, { confidence: boardConfidence, asked });
   const values = means.map(({ estimate }) => estimate.value);
-  const differ = found.halfWidth === null ? null : found.difference > found.halfWidth;
-  return [{ measure: 'yield', unit: 't/ha', on: null, n: null, lowest: found.lowest, highest: found.highest, least: Math.min(...values), most: Math.max(...values), difference: found.difference, halfWidth: found.halfWidth, p: null, differ, betweenShare: null }];
+  const halfWidth = basis === 'shared' ? null : found.halfWidth;
+  return {
+    measure: 'yield', basis, unit: 't/ha', on: null, n: null, lowest: found.lowest, highest: found.highest, least: Math.min(...values), most: Math.max(...values),
+    difference: found.difference, halfWidth, p: null, differ: halfWidth === null ? null : found.difference > halfWidth, betweenShare: null,
+  };
 }
 
 /** Whether the zones as they are today would have differed in the season before; null when it was not read so. */

@@ -1,0 +1,85 @@
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import type { LotsBoard } from '../../shared/contracts/lots.ts';
+import type { ReviewView, TicketView } from '../../shared/contracts/tickets.ts';
+import { makeZonedBlock, type ZonedBlock } from './support/makeZonedBlock.ts';
+import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
+
+let app: TestApp;
+let winemaker: Agent;
+let block: ZonedBlock;
+let base: string;
+let lotId: string;
+
+beforeAll(async () => {
+  app = await startTestApp();
+  const estate = await app.addEstate('Weighed zones');
+  block = await makeZonedBlock({ estateId: estate.estateId, personId: estate.ownerId }, { name: 'South Shelf' });
+  winemaker = await app.as((await app.addPerson(estate.estateId, 'winemaker')).email);
+  base = `/api/estates/${estate.estateId}`;
+  lotId = (await winemaker.post(`${base}/lots`, { name: 'Both', pickOn: '2026-09-25' })).body.id as string;
+  await winemaker.write('put', `${base}/lots/${lotId}/parts`).set('if-match', '"1"').send({ parts: block.zoneIds.map((zoneId) => ({ zoneId })) });
+});
+afterAll(() => app.close());
+
+const answer = async () => ((await winemaker.get(`${base}/review`)).body as ReviewView).blocks[0]!;
+const tickets = async () => (await winemaker.get(`${base}/tickets`)).body.items as TicketView[];
+
+/** A load of 8 t in place of the one that counts now. */
+async function weigh(split: readonly object[]): Promise<void> {
+  const before = (await tickets()).find(({ correctedBy }) => correctedBy === null);
+  const sent = await winemaker.post(`${base}/tickets`, { lotId, ticketNo: `T${(await tickets()).length + 1}`, gross: 11_000, tare: 3000, weighedAt: '2026-09-26T09:00:00Z', corrects: before?.id ?? null, note: before ? 'Split looked up' : '', split });
+  expect(sent.status).toBe(201);
+}
+const part = (zoneNumber: number | null, kg: number, over: object = {}) => ({ blockId: block.blockId, zoneNumber, kg, how: 'measured', by: 'scale', ...over });
+
+describe('whether zones mattered, by the scale', () => {
+  it('learns nothing of zones from a load that was shared out', async () => {
+    for (const split of [[], [part(null, 8000)], [part(1, 6000, { how: 'shared', by: 'rows', count: 30 }), part(2, 2000, { how: 'shared', by: 'rows', count: 10 })]]) {
+      await weigh(split);
+      const { measures, verdict } = await answer();
+      expect(measures.map(({ measure, basis, differ, halfWidth }) => ({ measure, basis, differ, halfWidth }))).toEqual([{ measure: 'yield', basis: 'shared', differ: null, halfWidth: null }]);
+      expect(verdict).toBe('notRead');
+    }
+  });
+
+  it('tells zones apart by what each weighed', async () => {
+    await weigh([part(1, 6000), part(2, 2000)]);
+    const { measures, verdict } = await answer();
+    const [found] = measures;
+    expect(measures).toHaveLength(1);
+    expect(found).toMatchObject({ basis: 'weighed', lowest: 2, highest: 1, differ: true });
+    const { zones } = (await winemaker.get(`${base}/lots`)).body as LotsBoard;
+    const ha = zones[0]!.areaHa;
+    expect(found!.least).toBeCloseTo(2 / ha, 6);
+    expect(found!.most).toBeCloseTo(6 / ha, 6);
+    // One pair, four measures asked: normal quantile at 1 − 0.05/4/2 is 2.497705 (R, qnorm(0.99375)).
+    const error = Math.hypot(...[[6, zones[0]!], [2, zones[1]!]].map(([t, zone]) => ((t as number) / ha) * Math.sqrt(0.16 / (zone as { bearing: number }).bearing + 0.005 ** 2)));
+    expect(found!.halfWidth).toBeCloseTo(2.497705 * error, 4);
+    expect(verdict).toBe('keep');
+  });
+
+  it('takes counted bins as wider than a scale', async () => {
+    const apart = (await answer()).measures[0]!.halfWidth!;
+    await weigh([part(1, 6000, { how: 'shared', by: 'bins', count: 15 }), part(2, 2000, { how: 'shared', by: 'bins', count: 5 })]);
+    const [found] = (await answer()).measures;
+    expect(found).toMatchObject({ basis: 'bins', differ: true });
+    expect(found!.halfWidth!).toBeGreaterThan(apart * 1.5);
+  });
+
+  it('calls no difference where the weights lie within chance', async () => {
+    await weigh([part(1, 4040), part(2, 3960)]);
+    const { measures, verdict } = await answer();
+    expect(measures[0]).toMatchObject({ basis: 'weighed', differ: false });
+    expect(verdict).toBe('merge');
+  });
+
+  it('adds up to the scale over the zones, however it was split', async () => {
+    const { zones } = (await winemaker.get(`${base}/lots`)).body as LotsBoard;
+    for (const split of [[], [part(null, 8000)], [part(1, 5000), part(2, 3000)]]) {
+      await weigh(split);
+      const found = (await answer()).measures[0]!;
+      const tonnes = found.least * zones[found.lowest - 1]!.areaHa + found.most * zones[found.highest - 1]!.areaHa;
+      expect(tonnes).toBeCloseTo(8, 6);
+    }
+  });
+});

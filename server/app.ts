@@ -25,8 +25,8 @@ import { estateListRoutes, estateRoutes } from './routes/estates.ts';
 import { harvestRoutes, noticeStateRoutes } from './routes/harvest.ts';
 import { importRoutes } from './routes/imports.ts';
 import { jobRoutes } from './routes/jobs.ts';
-import { languages, type Language } from '../shared/contracts/common.ts';
 import { labRoutes } from './routes/lab.ts';
+import { languageOf } from './routes/language.ts';
 import { layerRoutes } from './routes/layers.ts';
 import { lotRoutes } from './routes/lots.ts';
 import { measureRoutes } from './routes/measures.ts';
@@ -154,11 +154,6 @@ function serveClient(app: Express, folder: string): void {
   app.use(express.static(folder, { maxAge: 0, index: false }));
   const page = join(folder, 'index.html');
   if (existsSync(page)) app.get('/{*path}', (_request, response) => response.set('cache-control', 'no-cache').sendFile(page));
-}
-
-/** Pages ask in the language they are shown in (RFC 9110, 12.5.4). */
-function languageOf(request: Request): Language {
-  return (request.acceptsLanguages([...languages]) || 'en') as Language;
 }
 
 const answerProblem: ErrorRequestHandler = (error: unknown, request, response, next) => {

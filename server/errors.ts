@@ -3,6 +3,7 @@ import { MulterError } from 'multer';
 import { ForeignKeyViolationError, NotFoundError, UniqueViolationError } from 'objection';
 import { ZodError } from 'zod';
 import type { Language } from '../shared/contracts/common.ts';
+import { computationWords } from './sentences/computationWords.ts';
 import { inputWords } from './sentences/inputWords.ts';
 import { say, sentenceIn, type Sentence } from './sentences/say.ts';
 
@@ -108,7 +109,7 @@ const table = [
   row(Unconditional, 428, 'Version needed', said),
   row(TooMuch, 429, 'Too much', said),
   row(Unusable, 422, 'Cannot be used', said),
-  row(AnalysisError, 422, 'Cannot be computed', (error) => ({ code: error.code, detail: error.message })),
+  row(AnalysisError, 422, 'Cannot be computed', (error, language) => ({ code: error.code, detail: computationWords(language, error.message) })),
   row(ZodError, 422, 'Cannot be used', inputAnswer),
   row(NotFoundError, 404, 'Not found', () => ({ code: 'notFound', detail: say('nothingHere') })),
   row(UniqueViolationError, 409, 'Clash', (error) => ({ code: 'taken', detail: say('takenAlready', { what: error.columns.filter((column) => column !== 'estate_id').join(', ') || say('aName') }) })),

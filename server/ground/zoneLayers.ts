@@ -24,5 +24,5 @@ export async function loadBlockLayers(estateId: string, blockId: string, layerId
 /** As the zoning takes it; a null weight lets the advice decide. */
 export function zoningLayer({ layer, placed }: PlacedOnBlock, weight: number | null): ZoningLayer {
   const type = layerType(layer.type);
-  return { id: layer.id, type: layer.type, role: type.role, kind: type.resampling === 'class' ? 'class' : 'number', cells: decodeFloatCells(placed.cells), weight };
+  return { id: layer.id, name: layer.name, type: layer.type, role: type.role, kind: type.resampling === 'class' ? 'class' : 'number', cells: decodeFloatCells(placed.cells), weight };
 }

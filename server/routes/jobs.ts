@@ -1,6 +1,7 @@
 import { Router } from 'express';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { cancelJob, readJob } from '../services/jobs.ts';
+import { inLanguageOf } from './language.ts';
 
 const pollMs = 300;
 const finished = new Set(['done', 'failed', 'cancelled']);
@@ -10,11 +11,11 @@ export function jobRoutes(): Router {
   const router = Router({ mergeParams: true });
 
   router.get('/jobs/:jobId', allow('estate.see', 'read'), async (request, response) => {
-    response.json(await readJob(accessOf(request), idParam(request, 'jobId')));
+    response.json(inLanguageOf(request, await readJob(accessOf(request), idParam(request, 'jobId'))));
   });
 
   router.delete('/jobs/:jobId', allow('zoning.run', 'propose'), async (request, response) => {
-    response.json(await cancelJob(accessOf(request), idParam(request, 'jobId'), new Date()));
+    response.json(inLanguageOf(request, await cancelJob(accessOf(request), idParam(request, 'jobId'), new Date())));
   });
 
   router.get('/jobs/:jobId/events', allow('estate.see', 'read'), async (request, response) => {
@@ -26,7 +27,7 @@ export function jobRoutes(): Router {
     request.on('close', () => (open = false));
     let last = '';
     while (open) {
-      const job = await readJob(access, jobId);
+      const job = inLanguageOf(request, await readJob(access, jobId));
       const text = JSON.stringify(job);
       if (text !== last) response.write(`data: ${text}\n\n`);
       last = text;

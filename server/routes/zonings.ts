@@ -15,6 +15,7 @@ import { reportZoning } from '../services/zonings/reportZoning.ts';
 import { requestZoning } from '../services/zonings/request.ts';
 import { compareSeasons } from '../services/zonings/seasons.ts';
 import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
+import { inLanguageOf } from './language.ts';
 
 const shownQuery = z.object({ zones: z.coerce.number().int().min(1).max(6).optional() });
 const listQuery = z.object({ block: id.optional() });
@@ -42,7 +43,7 @@ export function zoningRoutes(): Router {
     response.json(await liveZones(accessOf(request)));
   });
   router.get('/zonings/:zoningId', allow('estate.see', 'read'), async (request, response) => {
-    response.json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null));
+    response.json(inLanguageOf(request, await viewZoning(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null)));
   });
   router.get('/zonings/:zoningId/labels', allow('estate.see', 'read'), async (request, response) => {
     const { labels, gridKey } = await readLabels(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null);

@@ -33,11 +33,11 @@ export function checkedOptions({ grid, layers, options = {}, readings = [], toge
   if (layers.length === 0) throw new AnalysisError('no-layer', 'No layer was chosen; choose at least one.');
   const ids = new Set<string>();
   for (const layer of layers) {
-    assertCellCount(grid, layer.cells, `Layer "${layer.id}"`);
-    if (ids.has(layer.id)) throw new AnalysisError('layer-twice', `Layer "${layer.id}" was given twice; give each a name of its own.`);
+    assertCellCount(grid, layer.cells, `Layer "${layer.name ?? layer.id}"`);
+    if (ids.has(layer.id)) throw new AnalysisError('layer-twice', `Layer "${layer.name ?? layer.id}" was given twice; give each a name of its own.`);
     ids.add(layer.id);
   }
-  for (const block of together) for (const layer of block.layers) assertCellCount(block.grid, layer.cells, `Layer "${layer.id}"`);
+  for (const block of together) for (const layer of block.layers) assertCellCount(block.grid, layer.cells, `Layer "${layer.name ?? layer.id}"`);
   for (const { measure, values } of readings) {
     if (values.some(({ value }) => !Number.isFinite(value))) throw new AnalysisError('reading', `A reading of "${measure}" is not a number; correct or remove it.`);
   }

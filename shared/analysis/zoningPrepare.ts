@@ -35,7 +35,7 @@ export function prepareLayers(grid: Grid, layers: readonly ZoningLayer[], option
   for (const layer of layers) {
     const coverage = coverageOf(grid, layer.cells);
     if (coverage < LEAST_COVERAGE) {
-      throw new AnalysisError('layer-coverage', `Layer "${layer.id}" covers ${Math.round(coverage * 100)} % of the block; ${LEAST_COVERAGE * 100} % is needed. Leave it out or import one that covers the block.`);
+      throw new AnalysisError('layer-coverage', `Layer "${layer.name ?? layer.id}" covers ${Math.round(coverage * 100)} % of the block; ${LEAST_COVERAGE * 100} % is needed. Leave it out or import one that covers the block.`);
     }
     if (coverage < GOOD_COVERAGE) warnings.push({ code: 'layer-coverage', about: layer.id, figures: { coverage, limit: GOOD_COVERAGE } });
     const prepared = prepareLayer(grid, layer, options);

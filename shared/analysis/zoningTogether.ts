@@ -96,5 +96,5 @@ function cut<Values extends Uint8Array | Float32Array>(from: Values, { grid, col
 
 function assertFits(own: BlockInput, other: BlockInput): void {
   const missing = own.layers.find(({ id }) => !other.layers.some((layer) => layer.id === id));
-  if (missing) throw new AnalysisError('layer-missing', `Layer "${missing.id}" does not lie on all of the blocks; leave it out or zone them apart.`);
+  if (missing) throw new AnalysisError('layer-missing', `Layer "${missing.name ?? missing.id}" does not lie on all of the blocks; leave it out or zone them apart.`);
 }

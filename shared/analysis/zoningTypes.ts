@@ -12,6 +12,8 @@ import type { FruitCheck } from './verdictFruit.ts';
 
 export interface ZoningLayer {
   readonly id: string;
+  /** What people call it, where that is not its id: said in refusals. */
+  readonly name?: string;
   readonly type: string;
   /** Evidence is measured on the vines or in the soil of this block; context only describes the place. */
   readonly role: 'evidence' | 'context';

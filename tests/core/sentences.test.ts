@@ -6,6 +6,11 @@ import { Clash, problemOf } from '../../server/errors.ts';
 import { en } from '../../server/sentences/en.ts';
 import { es } from '../../server/sentences/es.ts';
 import { fr } from '../../server/sentences/fr.ts';
+import { computationWords, failureWords } from '../../server/sentences/computationWords.ts';
+import * as computationsEs from '../../server/sentences/computations/es.ts';
+import * as computationsFr from '../../server/sentences/computations/fr.ts';
+import * as computationsIt from '../../server/sentences/computations/it.ts';
+import * as computationsPt from '../../server/sentences/computations/pt.ts';
 import * as inputsEs from '../../server/sentences/inputs/es.ts';
 import * as inputsFr from '../../server/sentences/inputs/fr.ts';
 import * as inputsIt from '../../server/sentences/inputs/it.ts';
@@ -13,10 +18,18 @@ import * as inputsPt from '../../server/sentences/inputs/pt.ts';
 import { it as italian } from '../../server/sentences/it.ts';
 import { pt } from '../../server/sentences/pt.ts';
 import { say, sentenceIn } from '../../server/sentences/say.ts';
+import { AnalysisError } from '../../shared/analysis/analysisError.ts';
 
 const others = { es, fr, it: italian, pt } as const;
 const inputs = { es: inputsEs.es, fr: inputsFr.fr, it: inputsIt.it, pt: inputsPt.pt } as const;
+const computations = { es: computationsEs.es, fr: computationsFr.fr, it: computationsIt.it, pt: computationsPt.pt } as const;
 const placesIn = (text: string) => [...new Set(text.match(/\{\w+\}/g))].sort();
+
+/** A template of the source with its facts numbered, as the catalogues have it. */
+function numbered(template: string): string {
+  let fact = 0;
+  return template.replace(/\$\{(?:[^{}]|\{[^{}]*\})*\}/g, () => `{${++fact}}`);
+}
 
 function sources(folder: string): string[] {
   return readdirSync(folder, { withFileTypes: true, recursive: true })
@@ -66,6 +79,31 @@ describe('refusals in the language of whoever asked', () => {
     const [name, area] = problemOf(error, 'es').errors!;
     expect(name!.message).toBe(inputsEs.es['Give a name.']);
     expect(area!.message).toBe('Demasiado grande: se esperaba que número fuera <=1000');
+  });
+
+  it.each(Object.entries(computations))('%s has every sentence of zoning and of the ground about what cannot be computed', (_language, catalog) => {
+    const thrown = ['shared/analysis', 'shared/geo'].flatMap(sources).flatMap((text) => [...text.matchAll(/new AnalysisError\(\s*'[\w-]+',\s*(?:'([^']*)'|`([^`]*)`)/g)].map(([, plain, filled]) => numbered(plain ?? filled!)));
+    expect(thrown.length).toBeGreaterThan(50);
+    expect(thrown.filter((sentence) => !catalog[sentence])).toEqual([]);
+    for (const [english, told] of Object.entries(catalog)) {
+      expect(placesIn(told), english).toEqual(placesIn(english));
+      expect(told, english).not.toBe(english);
+    }
+  });
+
+  it('finds what a computation said, with its facts and the words among them', () => {
+    const error = new AnalysisError('layer-coverage', 'Layer "Vigueur {1} (été) $&" covers 41 % of the block; 60 % is needed. Leave it out or import one that covers the block.');
+    expect(problemOf(error, 'en').detail).toBe(error.message);
+    expect(problemOf(error, 'fr').detail).toBe('La couche « Vigueur {1} (été) $& » couvre 41 % de la parcelle ; il faut 60 %. Laissez-la de côté ou importez-en une qui couvre la parcelle.');
+    expect(computationWords('es', 'Row spacing is -1 m; type a length above 0.')).toBe('Distancia entre hileras: -1 m; escriba una longitud mayor que 0.');
+    expect(computationWords('pt', 'Something nobody has written down.')).toBe('Something nobody has written down.');
+  });
+
+  it('says again why a job failed, which is kept in English', () => {
+    const kept = sentenceIn('en', say('outlineChangedSinceAsked', { block: 'Heron Bank' }));
+    expect(failureWords('it', kept)).toBe(sentenceIn('it', say('outlineChangedSinceAsked', { block: 'Heron Bank' })));
+    expect(failureWords('fr', sentenceIn('en', say('roundsOut', { n: 3 })))).toBe(sentenceIn('fr', say('roundsOut', { n: 3 })));
+    expect(failureWords('en', kept)).toBe(kept);
   });
 
   it('keeps English for the log', () => {

@@ -18,8 +18,8 @@ export interface FruitCheck {
 }
 
 /** Fewer readings than this say nothing for or against a map of zones. */
-const LEAST_READINGS = 30;
-const AGREES_BELOW = 0.05;
+export const LEAST_READINGS = 30;
+export const AGREES_BELOW = 0.05;
 const DISAGREES_ABOVE = 0.1;
 
 /** Several measures are one look each: the best of them must hold after division by their number (Bonferroni). */

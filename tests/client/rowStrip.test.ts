@@ -4,6 +4,7 @@ import RowStrip from '../../src/components/rowstrip/RowStrip.vue';
 import type { StripChoice, StripRow } from '../../src/components/rowstrip/rowStripTypes.ts';
 import { afterTap, choiceBetween, idsBetween, movedVine, wholeRows } from '../../src/components/rowstrip/stripChoose.ts';
 import { chosenRuns, nearestPostM, postNumber, stripScale, sumOfChoice, vineAtM, vineM, xOfM } from '../../src/components/rowstrip/stripLayout.ts';
+import { zoneToSplit } from '../../src/components/zones/zoneStrip.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 /** Three rows, a vine each metre: row 1 of 10 vines from 0 m, row 2 of 12 from −2 m, row 3 of 8 from 2 m. */
@@ -118,6 +119,29 @@ describe('row strip', () => {
     expect(wrapper.text()).toContain('Rows 1 to 2');
     await press('2');
     expect(wrapper.emitted('give')).toEqual([[2]]);
+  });
+
+  it('Space again says from where, and once more to where, as a tap does', async () => {
+    wrapper = await strip();
+    await press(' ');
+    for (let step = 0; step < 4; step++) await press('ArrowRight');
+    await press(' ');
+    for (let step = 0; step < 3; step++) await press('ArrowRight');
+    await press(' ');
+    expect(wrapper.emitted('update:choice')!.map(([choice]) => choice)).toEqual([wholeRows(['r1']), { rowIds: ['r1'], fromM: 4, toM: null }, { rowIds: ['r1'], fromM: 4, toM: 8 }]);
+  });
+
+  it('leaves keys of the browser with Ctrl alone', async () => {
+    wrapper = await strip();
+    await press('1', { ctrlKey: true });
+    await press('u', { ctrlKey: true });
+    expect([wrapper.emitted('give'), wrapper.emitted('undo')]).toEqual([undefined, undefined]);
+  });
+
+  it('a split along a row cuts the zone asked for where the row crosses it, else the one with most of the row', () => {
+    expect([2, 1, 4, null].map((asked) => zoneToSplit(rows, wholeRows(['r2']), asked))).toEqual([2, 1, 2, 2]);
+    expect(zoneToSplit(rows, wholeRows(['r1', 'r2']), 1)).toBeNull();
+    expect(zoneToSplit(rows, null, 1)).toBeNull();
   });
 
   it('u asks to undo and Shift-u to redo; Escape lets go', async () => {

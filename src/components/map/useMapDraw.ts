@@ -36,6 +36,18 @@ export function useMapDraw(map: ShallowRef<MlMap | null>, { shape, corners, isAd
     corners.value = read;
   }
 
+  /** Corners set so far, without the one that follows the pointer: a shape counts as soon as it has enough, finished or not. */
+  function readSoFar(): void {
+    const found = draw?.getSnapshot().find(({ properties }) => properties.mode === modeOf() && properties.currentlyDrawing);
+    if (!found || found.geometry.type === 'Point') return;
+    const line = (found.geometry.type === 'Polygon' ? found.geometry.coordinates[0]! : found.geometry.coordinates) as number[][];
+    const count = found.geometry.type === 'Polygon' ? Number(found.properties.committedCoordinateCount ?? 0) : line.length - 1;
+    const soFar = line.slice(0, count).map(([lon, lat]) => rounded([lon!, lat!]));
+    if (JSON.stringify(soFar) === shown) return;
+    shown = JSON.stringify(soFar);
+    corners.value = soFar;
+  }
+
   function show(): void {
     if (!draw || JSON.stringify(corners.value) === shown) return;
     shown = JSON.stringify(corners.value);
@@ -67,7 +79,7 @@ export function useMapDraw(map: ShallowRef<MlMap | null>, { shape, corners, isAd
       read();
       isAdding.value = false;
     });
-    draw.on('change', (_ids, type) => type === 'update' && !isAdding.value && read());
+    draw.on('change', (_ids, type) => (isAdding.value ? readSoFar() : type === 'update' && read()));
     show();
   }, { immediate: true });
 

@@ -1,6 +1,7 @@
 import { computed, ref, type Ref } from 'vue';
 import type { StripChoice, StripRow, StripVine } from './rowStripTypes.ts';
-import { choiceBetween, movedVine, wholeRows, type StripMove } from './stripChoose.ts';
+import { afterTap, choiceBetween, movedVine, wholeRows, type StripMove } from './stripChoose.ts';
+import { vineM } from './stripLayout.ts';
 
 const moves: Readonly<Record<string, StripMove>> = { ArrowUp: 'up', ArrowDown: 'down', ArrowLeft: 'left', ArrowRight: 'right', Home: 'start', End: 'end' };
 
@@ -13,7 +14,7 @@ interface StripKeysOptions {
   readonly redo: () => void;
 }
 
-/** Keyboard of the strip: up and down rows, left and right vines, Ctrl by panel, Shift extends, 1–6 give, u and U undo and redo. */
+/** Keyboard of the strip: up and down rows, left and right vines, Ctrl by panel, Shift extends, Space is a tap, 1–6 give, u and U undo and redo. */
 export function useStripKeys({ rows, vinesPerPanel, choice, give, undo, redo }: StripKeysOptions) {
   const at = ref<StripVine | null>(null);
   const anchor = ref<StripVine | null>(null);
@@ -37,16 +38,23 @@ export function useStripKeys({ rows, vinesPerPanel, choice, give, undo, redo }: 
   }
 
   function key(event: KeyboardEvent): void {
-    if (here.value === null || event.altKey || event.metaKey) return;
+    const isEdit = event.ctrlKey && !moves[event.key];
+    if (here.value === null || event.altKey || event.metaKey || isEdit) return;
     const to = moves[event.key];
     if (to) move(event, to);
-    else if (event.key === ' ' || event.key === 'Enter') choice.value = wholeRows([here.value.rowId]);
+    else if (event.key === ' ' || event.key === 'Enter') tap(here.value);
     else if (event.key === 'Escape') choice.value = null;
     else if (/^[1-6]$/.test(event.key)) giveTo(Number(event.key));
     else if (event.key === 'u') undo();
     else if (event.key === 'U') redo();
     else return;
     event.preventDefault();
+  }
+
+  /** Space does what a tap does: the row, then from where, then to where. */
+  function tap({ rowId, vine }: StripVine): void {
+    const rowIndex = rows().findIndex(({ id }) => id === rowId);
+    choice.value = afterTap(rows(), choice.value, { tap: { rowIndex, alongM: vineM(rows()[rowIndex]!, vine), extend: false }, vinesPerPanel: vinesPerPanel() });
   }
 
   function giveTo(zone: number): void {

@@ -59,3 +59,12 @@ export function chosenRows(choice: StripChoice, strip: readonly StripRow[], rows
   });
 }
 
+
+/** The zone that a split along the one chosen row would cut: the zone asked for where the row crosses it, else the one with most of the row. */
+export function zoneToSplit(strip: readonly StripRow[], choice: StripChoice | null, asked: number | null): number | null {
+  if (choice === null || choice.rowIds.length !== 1) return null;
+  const vines = new Map<number, number>();
+  for (const { zone, from, to } of strip.find(({ id }) => id === choice.rowIds[0])?.zoneRuns ?? []) if (zone > 0) vines.set(zone, (vines.get(zone) ?? 0) + to - from + 1);
+  if (asked !== null && vines.has(asked)) return asked;
+  return [...vines].sort((a, b) => b[1] - a[1] || a[0] - b[0])[0]?.[0] ?? null;
+}

@@ -1,12 +1,9 @@
 import { Router } from 'express';
-import { z } from 'zod';
-import { newCrewPerson, newPin, phoneState } from '../../shared/contracts/phones.ts';
+import { lossReport, newCrewPerson, newPin, phoneState } from '../../shared/contracts/phones.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { crewCodeState, endCrewCode, makeCrewCode } from '../services/crew/crewCode.ts';
 import { addCrewPerson, setPin } from '../services/crew/crewPin.ts';
 import { checkIn, listPhones, reportLost } from '../services/crew/phones.ts';
-
-const lossReport = z.object({ isLost: z.boolean() });
 
 /** Shared phones: the crew code, PINs, and how the phones of the estate stand. */
 export function crewRoutes(): Router {

@@ -1,19 +1,16 @@
 import { Router, type RequestHandler } from 'express';
 import { pipeline } from 'node:stream/promises';
-import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
+import { ofBlock } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { keepPhoto, listPhotos, openPhoto } from '../services/photos/fieldPhotos.ts';
 import { uploadsOf } from '../storage/uploads.ts';
-
-const filter = z.object({ block: id.optional() });
 
 /** Photos of vines: sent by phones, seen in the office, without place or device in the file. */
 export function fieldPhotoRoutes(options: { receive: RequestHandler }): Router {
   const router = Router({ mergeParams: true });
   const own = allow('readings.record', 'own');
   router.get('/field-photos', own, async (request, response) => {
-    const { block } = filter.parse(request.query);
+    const { block } = ofBlock.parse(request.query);
     const items = await listPhotos(accessOf(request), block ? { blockId: block } : {});
     response.json({ items, total: items.length });
   });

@@ -1,9 +1,8 @@
 import { Router, type Request } from 'express';
-import { z } from 'zod';
-import { isoDate } from '../../shared/contracts/common.ts';
 import { newNotice } from '../../shared/contracts/notices.ts';
 import { factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts';
 import { newTicket, ticketFile } from '../../shared/contracts/tickets.ts';
+import { knownOn, letterPaper } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { enterCellarResult, listCellarResults, listFactors, switchFactor } from '../services/lots/cellar.ts';
 import { listNotices, noticePeople, noticeState, printNotice, readNotice, sendNotice } from '../services/lots/notices.ts';
@@ -14,8 +13,6 @@ import { seasonReview } from '../services/lots/review.ts';
 import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
 import { versionMatched } from './etag.ts';
 
-const knownQuery = z.object({ known: isoDate.optional() });
-const letterQuery = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
 
 const today = (request: Request) => todayOf(accessOf(request), new Date());
 
@@ -33,7 +30,7 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   const router = Router({ mergeParams: true });
 
   router.get('/notices', allow('notices.acknowledge'), async (request, response) => {
-    const { known } = knownQuery.parse(request.query);
+    const { known } = knownOn.parse(request.query);
     const items = await listNotices(accessOf(request), { today: await today(request), knownOn: known ?? null });
     response.json({ items, total: items.length });
   });
@@ -87,7 +84,7 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
   });
 
   router.get('/blocks/:blockId/season-letter', allow('review.see'), async (request, response) => {
-    const { size } = letterQuery.parse(request.query);
+    const { size } = letterPaper.parse(request.query);
     const { name, body } = await seasonLetter(accessOf(request), idParam(request, 'blockId'), { size, today: await today(request), now: new Date() });
     response.type('application/pdf').attachment(name).send(body);
   });

@@ -1,15 +1,12 @@
 import { Router } from 'express';
-import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
 import { cleaningChange, layerChange, overrideChange } from '../../shared/contracts/layers.ts';
+import { oneBlock } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { layersBeside } from '../services/layers/beside.ts';
 import { readCells, readMarks, readRelief } from '../services/layers/cells.ts';
 import { changeLayer, overrideLayer, retireLayer } from '../services/layers/change.ts';
 import { changeCleaning, readAside } from '../services/layers/survey.ts';
 import { listLayers } from '../services/layers/view.ts';
-
-const cellsQuery = z.object({ block: id });
 
 /** Layers on blocks: what they hold, how far they may be trusted, and their cells. */
 export function layerRoutes(): Router {
@@ -25,12 +22,12 @@ export function layerRoutes(): Router {
   });
 
   router.get('/layers/:layerId/cells', allow('estate.see', 'read'), async (request, response) => {
-    const { bytes, grid } = await readCells(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    const { bytes, grid } = await readCells(accessOf(request), idParam(request, 'layerId'), oneBlock.parse(request.query).block);
     response.set({ 'content-type': 'application/octet-stream', 'x-grid': JSON.stringify(grid), 'cache-control': 'private, no-cache' }).send(bytes);
   });
 
   router.get('/layers/:layerId/marks', allow('estate.see', 'read'), async (request, response) => {
-    const bytes = await readMarks(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    const bytes = await readMarks(accessOf(request), idParam(request, 'layerId'), oneBlock.parse(request.query).block);
     if (bytes === null) response.status(204).end();
     else response.set({ 'content-type': 'application/octet-stream', 'cache-control': 'private, no-cache' }).send(bytes);
   });
@@ -41,12 +38,12 @@ export function layerRoutes(): Router {
   });
 
   router.get('/layers/:layerId/aside', allow('estate.see', 'read'), async (request, response) => {
-    const items = await readAside(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    const items = await readAside(accessOf(request), idParam(request, 'layerId'), oneBlock.parse(request.query).block);
     response.json({ items, total: items.length });
   });
 
   router.get('/layers/:layerId/beside', allow('estate.see', 'read'), async (request, response) => {
-    const items = await layersBeside(accessOf(request), idParam(request, 'layerId'), cellsQuery.parse(request.query).block);
+    const items = await layersBeside(accessOf(request), idParam(request, 'layerId'), oneBlock.parse(request.query).block);
     response.json({ items, total: items.length });
   });
 

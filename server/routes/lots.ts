@@ -1,7 +1,6 @@
 import { Router, type Request } from 'express';
-import { z } from 'zod';
-import { id, isoDate } from '../../shared/contracts/common.ts';
 import { alcoholChoice, dayCapacity, lotChange, lotParts, newLot, newScenario, newTank, tankChange, zoneMove } from '../../shared/contracts/lots.ts';
+import { boardAsked, knownOn, ofSeason, ripenessAsked } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { todayOf } from '../services/estates.ts';
 import { chooseAlcoholMethod } from '../services/lots/alcoholMethod.ts';
@@ -16,10 +15,6 @@ import { blockRipening } from '../services/results/ripening.ts';
 import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
-const boardQuery = z.object({ scenario: id.optional(), known: isoDate.optional() });
-const knownQuery = boardQuery.pick({ known: true });
-const resultsQuery = z.object({ season: id.optional() });
-const ripeningQuery = z.object({ season: id.optional(), known: isoDate.optional(), unchecked: z.enum(['out', 'in']).default('out') });
 
 const today = (request: Request) => todayOf(accessOf(request), new Date());
 
@@ -28,16 +23,16 @@ export function lotRoutes(): Router {
   const router = Router({ mergeParams: true });
 
   router.get('/zonings/:zoningId/results', allow('results.see', 'read'), async (request, response) => {
-    const { season } = resultsQuery.parse(request.query);
+    const { season } = ofSeason.parse(request.query);
     response.json(await zoneResults(accessOf(request), idParam(request, 'zoningId'), season ? { seasonId: season } : {}));
   });
   router.get('/blocks/:blockId/ripening', allow('results.see', 'read'), async (request, response) => {
-    const { season, known, unchecked } = ripeningQuery.parse(request.query);
+    const { season, known, unchecked } = ripenessAsked.parse(request.query);
     response.json(await blockRipening(accessOf(request), idParam(request, 'blockId'), { today: await today(request), knownOn: known ?? null, unchecked, seasonId: season ?? null }));
   });
 
   router.get('/lots', allow('lots.see', 'read'), async (request, response) => {
-    const { scenario, known } = boardQuery.parse(request.query);
+    const { scenario, known } = boardAsked.parse(request.query);
     response.json(await lotsBoard(accessOf(request), { scenarioId: scenario ?? null, today: await today(request), knownOn: known ?? null }));
   });
   router.post('/lots', allow('lots.build', 'propose'), async (request, response) => {
@@ -81,7 +76,7 @@ export function lotRoutes(): Router {
     response.json({ items, total: items.length });
   });
   router.get('/day-capacities', allow('lots.see', 'read'), async (request, response) => {
-    const items = await listCapacities(accessOf(request), knownQuery.parse(request.query).known ?? null);
+    const items = await listCapacities(accessOf(request), knownOn.parse(request.query).known ?? null);
     response.json({ items, total: items.length });
   });
   router.put('/day-capacities', allow('lots.build', 'propose'), async (request, response) => {

@@ -1,9 +1,9 @@
 import { Router } from 'express';
 import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
 import { newPlan, planChange, planRedraw, basisQuestion } from '../../shared/contracts/planChoices.ts';
 import { divisionQuestion } from '../../shared/contracts/plans.ts';
 import { dayQuestion, walkQuestion } from '../../shared/contracts/planWalks.ts';
+import { ofBlock } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { dayOfPlans } from '../services/plans/dayOfPlans.ts';
 import { divisionsOf } from '../services/plans/divisions.ts';
@@ -14,8 +14,8 @@ import { standingOfPlan } from '../services/plans/standingOfPlan.ts';
 import { walkOfPlan } from '../services/plans/walkOfPlan.ts';
 import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
 
-const filter = z.object({ block: id.optional() });
-const exportQuery = z.object({ format: z.enum(Object.keys(planFormats) as [keyof typeof planFormats]) });
+/** A plan's file in one of its formats. */
+export const planExport = z.object({ format: z.enum(Object.keys(planFormats) as [keyof typeof planFormats]) });
 
 /** Sampling plans: how many vines, which, and what walk. */
 export function planRoutes(): Router {
@@ -36,7 +36,7 @@ export function planRoutes(): Router {
     response.status(201).json(await makePlan(accessOf(request), idParam(request, 'zoningId'), newPlan.parse(request.body)));
   });
   router.get('/plans', read, async (request, response) => {
-    const { block } = filter.parse(request.query);
+    const { block } = ofBlock.parse(request.query);
     const items = await listPlans(accessOf(request), block ? { blockId: block } : {});
     response.json({ items, total: items.length, zonings: await plannableZonings(accessOf(request)) });
   });
@@ -62,7 +62,7 @@ export function planRoutes(): Router {
     response.json(await redrawPlan(accessOf(request), idParam(request, 'planId'), planRedraw.parse(request.body), new Date()));
   });
   router.get('/plans/:planId/export', read, async (request, response) => {
-    const { format } = exportQuery.parse(request.query);
+    const { format } = planExport.parse(request.query);
     const file = await exportPlan(accessOf(request), idParam(request, 'planId'), format);
     response.set('content-type', file.type).attachment(file.name).send(file.body);
   });

@@ -1,17 +1,14 @@
 import { Router } from 'express';
-import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
 import { newRestriction, pickIntervalChange, restrictionLift } from '../../shared/contracts/restrictions.ts';
+import { ofBlock } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { changePickInterval, liftRestriction, listRestrictions, setRestriction } from '../services/restrictions.ts';
-
-const filter = z.object({ block: id.optional() });
 
 /** Entry restrictions as recorded. What is recorded never says that it is safe to enter. */
 export function restrictionRoutes(): Router {
   const router = Router({ mergeParams: true });
   router.get('/restrictions', allow('restrictions.see', 'read'), async (request, response) => {
-    const { block } = filter.parse(request.query);
+    const { block } = ofBlock.parse(request.query);
     const { items, lifters } = await listRestrictions(accessOf(request), { ...(block ? { blockId: block } : {}), now: new Date() });
     response.json({ items, total: items.length, lifters });
   });

@@ -1,8 +1,7 @@
 import { Router } from 'express';
-import { z } from 'zod';
-import { id, isoDate } from '../../shared/contracts/common.ts';
 import { newDay, newRound, roundChange } from '../../shared/contracts/rounds.ts';
 import { requireReach } from '../access/access.ts';
+import { blankLabels, crewSheet, daySheet, ofBlockOrPlan, roundLabels, whoseWalk } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts';
 import { fieldRound } from '../services/rounds/fieldRound.ts';
@@ -13,15 +12,6 @@ import { printDay } from '../services/rounds/printDay.ts';
 import { printSheet } from '../services/rounds/printSheet.ts';
 import { sendDay } from '../services/rounds/sendDay.ts';
 
-const filter = z.object({ block: id.optional(), plan: id.optional() });
-
-/** Somebody else's walk, for typing their sheet. */
-const walkQuery = z.object({ person: id.optional() });
-const sheetQuery = z.object({ paper: z.enum(['a4', 'letter']).default('a4') });
-const dayQuery = sheetQuery.extend({ onDate: isoDate });
-const labelPaper = z.enum(['a4', 'letter', 'single']).default('a4');
-const labelQuery = z.object({ paper: labelPaper, per: z.enum(['vine', 'zone']).default('vine') });
-const blankQuery = z.object({ paper: labelPaper, count: z.coerce.number().int().min(1, 'Print at least one label.').max(500, 'At most 500 labels at once.') });
 
 /** Rounds: a plan's vines sent to people for a day. Crew see their own. */
 export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
@@ -37,16 +27,16 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
     response.status(201).json(await makeRound(accessOf(request), idParam(request, 'planId'), newRound.parse(request.body), { publicUrl }));
   });
   router.get('/rounds/day-sheet', allow('sheets.print', 'own'), async (request, response) => {
-    const { name, body } = await printDay(accessOf(request), { ...dayQuery.parse(request.query), now: new Date() });
+    const { name, body } = await printDay(accessOf(request), { ...daySheet.parse(request.query), now: new Date() });
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   router.get('/rounds', own, async (request, response) => {
-    const { block, plan } = filter.parse(request.query);
+    const { block, plan } = ofBlockOrPlan.parse(request.query);
     const items = await listRounds(accessOf(request), { ...(block ? { blockId: block } : {}), ...(plan ? { planId: plan } : {}) });
     response.json({ items, total: items.length });
   });
   router.get('/rounds/:roundId', own, async (request, response) => {
-    const { person } = walkQuery.parse(request.query);
+    const { person } = whoseWalk.parse(request.query);
     const access = accessOf(request);
     if (person !== undefined && person !== access.personId) requireReach(access, 'readings.record');
     response.json(await fieldRound(person === undefined ? access : { ...access, personId: person }, idParam(request, 'roundId'), new Date()));
@@ -60,17 +50,17 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
     response.status(204).end();
   });
   router.get('/rounds/:roundId/sheet', allow('sheets.print', 'own'), async (request, response) => {
-    const { paper } = sheetQuery.parse(request.query);
+    const { paper } = crewSheet.parse(request.query);
     const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
     const { name, body } = await printSheet(accessOf(request), idParam(request, 'roundId'), { paper, publicUrl, now: new Date() });
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   router.post('/rounds/:roundId/labels', allow('sheets.print', 'own'), async (request, response) => {
-    const { name, body } = await printLabels(accessOf(request), idParam(request, 'roundId'), { ...labelQuery.parse(request.query), now: new Date() });
+    const { name, body } = await printLabels(accessOf(request), idParam(request, 'roundId'), { ...roundLabels.parse(request.query), now: new Date() });
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   router.post('/labels', allow('sheets.print', 'own'), async (request, response) => {
-    const { name, body } = await printBlankLabels(accessOf(request), blankQuery.parse(request.query));
+    const { name, body } = await printBlankLabels(accessOf(request), blankLabels.parse(request.query));
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });
   return router;

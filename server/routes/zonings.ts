@@ -1,7 +1,6 @@
 import { Router } from 'express';
-import { z } from 'zod';
-import { id } from '../../shared/contracts/common.ts';
 import { newZoning, publishRequest, revisionOnly, zoneEditRequest, zoningChange } from '../../shared/contracts/zonings.ts';
+import { comparedWith, ofBlock, shownZones, zonesExport, zonesReport } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { readDoubt } from '../services/zonings/doubt.ts';
 import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '../services/zonings/editZones.ts';
@@ -17,12 +16,6 @@ import { compareSeasons } from '../services/zonings/seasons.ts';
 import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
 import { inLanguageOf } from './language.ts';
 
-const shownQuery = z.object({ zones: z.coerce.number().int().min(1).max(6).optional() });
-const listQuery = z.object({ block: id.optional() });
-const exportQuery = shownQuery.extend({ format: z.string() });
-const reportQuery = shownQuery.extend({ size: z.enum(['A4', 'Letter']).default('A4') });
-const compareQuery = z.object({ with: id });
-
 /** Zonings: asked for, read, kept as a draft, changed by hand, published. */
 export function zoningRoutes(): Router {
   const router = Router({ mergeParams: true });
@@ -36,21 +29,21 @@ export function zoningRoutes(): Router {
     response.json({ items, total: items.length });
   });
   router.get('/zonings', allow('estate.see', 'read'), async (request, response) => {
-    const items = await listZonings(accessOf(request), listQuery.parse(request.query).block ?? null);
+    const items = await listZonings(accessOf(request), ofBlock.parse(request.query).block ?? null);
     response.json({ items, total: items.length });
   });
   router.get('/zones', allow('estate.see', 'read'), async (request, response) => {
     response.json(await liveZones(accessOf(request)));
   });
   router.get('/zonings/:zoningId', allow('estate.see', 'read'), async (request, response) => {
-    response.json(inLanguageOf(request, await viewZoning(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null)));
+    response.json(inLanguageOf(request, await viewZoning(accessOf(request), idParam(request, 'zoningId'), shownZones.parse(request.query).zones ?? null)));
   });
   router.get('/zonings/:zoningId/labels', allow('estate.see', 'read'), async (request, response) => {
-    const { labels, gridKey } = await readLabels(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null);
+    const { labels, gridKey } = await readLabels(accessOf(request), idParam(request, 'zoningId'), shownZones.parse(request.query).zones ?? null);
     response.set('x-grid-key', gridKey).type('application/octet-stream').send(Buffer.from(labels));
   });
   router.get('/zonings/:zoningId/doubt', allow('estate.see', 'read'), async (request, response) => {
-    response.json(await readDoubt(accessOf(request), idParam(request, 'zoningId'), shownQuery.parse(request.query).zones ?? null));
+    response.json(await readDoubt(accessOf(request), idParam(request, 'zoningId'), shownZones.parse(request.query).zones ?? null));
   });
   router.get('/zonings/:zoningId/seasons', allow('estate.see', 'read'), async (request, response) => {
     response.json(await compareSeasons(accessOf(request), idParam(request, 'zoningId')));
@@ -83,15 +76,15 @@ export function zoningRoutes(): Router {
     response.json(await publishEffects(accessOf(request), idParam(request, 'zoningId')));
   });
   router.get('/zonings/:zoningId/compare', allow('estate.see', 'read'), async (request, response) => {
-    response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), compareQuery.parse(request.query).with));
+    response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), comparedWith.parse(request.query).with));
   });
   router.get('/zonings/:zoningId/export', allow('exports.make'), async (request, response) => {
-    const { format, zones = null } = exportQuery.parse(request.query);
+    const { format, zones = null } = zonesExport.parse(request.query);
     const file = await exportZones(accessOf(request), idParam(request, 'zoningId'), { format, zones });
     response.set('content-type', file.type).attachment(file.name).send(file.body);
   });
   router.get('/zonings/:zoningId/report', allow('exports.make'), async (request, response) => {
-    const { size, zones = null } = reportQuery.parse(request.query);
+    const { size, zones = null } = zonesReport.parse(request.query);
     const file = await reportZoning(accessOf(request), idParam(request, 'zoningId'), { size, zones, now: new Date() });
     response.type('application/pdf').attachment(file.name).send(file.body);
   });

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { layerTypeIds } from '../catalog/layerTypes.ts';
-import { areaGeometry, id, isoDate, multiPolygonGeometry, shortName } from './common.ts';
+import { areaGeometry, id, isoDate, shortName } from './common.ts';
 import { setAsideReasons } from '../analysis/cleanPoints.ts';
 import { newBlock } from './blocks.ts';
 
@@ -165,4 +165,4 @@ export const outlinesTaken = z.object({
     .max(500),
 });
 export type OutlinesTaken = z.infer<typeof outlinesTaken>;
-export const outlinesMade = z.object({ items: z.array(z.object({ id, name: z.string(), boundary: multiPolygonGeometry })) });
+export const outlinesMade = z.object({ items: z.array(z.object({ id, name: z.string(), boundary: areaGeometry })), total: z.int() });

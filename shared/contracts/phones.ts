@@ -38,3 +38,6 @@ export const crewCodeTyped = z.object({ code });
 export const crewSignIn = z.object({ code, personId: id, pin });
 export const crewOffer = z.object({ estate: z.string(), people: z.array(z.object({ id, name: z.string() })) });
 export type CrewOffer = z.infer<typeof crewOffer>;
+
+/** A phone was lost, or was found again. */
+export const lossReport = z.object({ isLost: z.boolean() });

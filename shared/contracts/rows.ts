@@ -94,3 +94,10 @@ export const censusChange = z
   })
   .refine((change) => (change.marks === undefined) !== (change.table === undefined), 'Send either marks or a table.');
 export type CensusChange = z.infer<typeof censusChange>;
+
+export const censusOutcome = z.object({
+  counts: vineCounts,
+  changed: z.int(),
+  skipped: z.int().describe("Marks that crew proposed where somebody's mark already stands."),
+});
+export type CensusOutcome = z.infer<typeof censusOutcome>;

@@ -1,26 +1,12 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { BlockChange, BlockLine, BlockView, ChangedBlock, NewBlockInput, OutlineCheck } from '../../shared/contracts/blocks.ts';
-import type { BlockRowsView, CensusChange, NumberingChange, VineCounts } from '../../shared/contracts/rows.ts';
+import type { AuditLine } from '../../shared/contracts/records.ts';
+import type { BlockRowsView, CensusChange, CensusOutcome, NumberingChange } from '../../shared/contracts/rows.ts';
 import { http } from '../lib/http.ts';
 
 interface Listed<Item> {
   items: Item[];
-}
-
-export interface HistoryLine {
-  readonly id: number;
-  readonly who: string | null;
-  readonly action: string;
-  readonly subjectName: string;
-  readonly reason: string | null;
-  readonly at: string;
-}
-
-export interface CensusOutcome {
-  readonly counts: VineCounts;
-  readonly changed: number;
-  readonly skipped: number;
 }
 
 type Area = OutlineCheck['boundary'] | NewBlockInput['boundary'];
@@ -46,7 +32,7 @@ export const useBlocksStore = defineStore('blocks', () => {
   const retire = (estateId: string, of: { id: string; version: number }) => http.delete(`${base(estateId)}/${of.id}`, { ifMatch: of.version });
   const renumber = (estateId: string, of: { id: string; version: number }, changed: NumberingChange) => http.put<BlockRowsView>(`${base(estateId)}/${of.id}/rows`, changed, { ifMatch: of.version });
   const count = (estateId: string, blockId: string, changed: Partial<CensusChange>) => http.put<CensusOutcome>(`${base(estateId)}/${blockId}/vines`, changed);
-  const history = (estateId: string, blockId: string) => http.get<{ items: HistoryLine[] }>(`/api/estates/${estateId}/audit`, { query: { subject: blockId } });
+  const history = (estateId: string, blockId: string) => http.get<{ items: AuditLine[] }>(`/api/estates/${estateId}/audit`, { query: { subject: blockId } });
 
   return { lines, load, block, rows, check, create, change, retire, renumber, count, history };
 });

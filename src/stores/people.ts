@@ -3,31 +3,11 @@ import { shallowRef } from 'vue';
 import type { z } from 'zod';
 import type { estateChange, EstateFactsView, NewEstate, SeasonChange } from '../../shared/contracts/estate.ts';
 import type { InvitationView, newInvitation, PersonView, rolesChange } from '../../shared/contracts/people.ts';
+import type { AuditLine, MailLine } from '../../shared/contracts/records.ts';
 import { http } from '../lib/http.ts';
 
 interface Listed<Item> {
   items: Item[];
-}
-
-export interface AuditLine {
-  readonly id: number;
-  readonly who: string | null;
-  readonly action: string;
-  readonly subjectName: string;
-  readonly reason: string | null;
-  readonly at: string;
-}
-
-export interface MailLine {
-  readonly id: string;
-  readonly kind: string;
-  readonly to: string;
-  readonly name: string;
-  readonly subject: string;
-  readonly text: string;
-  readonly state: 'outbox' | 'sent' | 'failed';
-  readonly error: string | null;
-  readonly createdAt: string;
 }
 
 /** People of an estate, invitations, what was done and what was written. */

@@ -1,6 +1,6 @@
 import type { Transaction } from 'objection';
 import { may } from '../../../shared/catalog/permissions.ts';
-import type { CensusChange, CensusMark, VineCounts } from '../../../shared/contracts/rows.ts';
+import type { CensusChange, CensusOutcome, CensusMark } from '../../../shared/contracts/rows.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { vineOrdinal } from '../../../shared/geo/numbering.ts';
 import { rowsFromStored } from '../../../shared/geo/storedRows.ts';
@@ -16,13 +16,6 @@ import { readCensusTable } from './censusTable.ts';
 import { findBlock } from './view.ts';
 import { vineTotals } from './vineCounts.ts';
 import { say } from '../../sentences/say.ts';
-
-export interface CensusOutcome {
-  counts: VineCounts;
-  changed: number;
-  /** Marks that crew proposed where somebody's mark already stands. */
-  skipped: number;
-}
 
 /** Writes what stands in the places of a block. Crew propose; the mark of somebody who may decide takes a proposal over. */
 export async function changeCensus(access: Access, blockId: string, change: CensusChange, now: Date): Promise<CensusOutcome> {

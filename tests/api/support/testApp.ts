@@ -2,6 +2,7 @@ import type { Express } from 'express';
 import type { Knex } from 'knex';
 import pg from 'pg';
 import supertest from 'supertest';
+import { expect } from 'vitest';
 import { makeApp } from '../../../server/app.ts';
 import { readConfig, type Config } from '../../../server/config.ts';
 import { openDatabase } from '../../../server/db.ts';
@@ -12,6 +13,7 @@ import { createEstate } from '../../../server/services/estates.ts';
 import { newEstate } from '../../../shared/contracts/estate.ts';
 import type { Role } from '../../../shared/catalog/roles.ts';
 import { createTestDatabase } from '../setup/testDatabase.ts';
+import { holdToDescription } from './describedAnswers.ts';
 
 export const testPassword = 'a long enough password';
 
@@ -46,10 +48,11 @@ export async function startTestApp(env: Record<string, string> = {}): Promise<Te
   const knex = openDatabase(database.url, 5);
   const sessionPool = new pg.Pool({ connectionString: database.url, max: 2 });
   const app = makeApp(config, { isReady: () => Promise.resolve(true), sessionPool, clientFolder: null });
+  const held = holdToDescription(app);
   let serial = 0;
 
   const browser: TestApp['browser'] = async () => {
-    const agent = supertest.agent(app);
+    const agent = supertest.agent(held.server);
     let token = (await agent.get('/api/session')).body.csrfToken as string;
     const write: Agent['write'] = (method, path) => agent[method](path).set('x-csrf-token', token);
     const send = (method: 'post' | 'put' | 'patch' | 'delete') => (path: string, body?: object) => (body ? write(method, path).send(body) : write(method, path));
@@ -100,6 +103,7 @@ export async function startTestApp(env: Record<string, string> = {}): Promise<Te
       await sessionPool.end();
       await knex.destroy();
       await database.drop();
+      expect(held.faults()).toEqual([]);
     },
   };
 }

@@ -13,7 +13,6 @@ import { seasonReview } from '../services/lots/review.ts';
 import { enterTicket, importTickets, listTickets } from '../services/lots/tickets.ts';
 import { versionMatched } from './etag.ts';
 
-
 const today = (request: Request) => todayOf(accessOf(request), new Date());
 
 /** Whether a notice on paper still holds; open to whoever has the paper, by its unguessable code. */

@@ -15,7 +15,6 @@ import { blockRipening } from '../services/results/ripening.ts';
 import { zoneResults } from '../services/results/zoneResults.ts';
 import { versionMatched } from './etag.ts';
 
-
 const today = (request: Request) => todayOf(accessOf(request), new Date());
 
 /** Results by zone, pick lots, what-ifs and tanks. Writes on a lot name its version in If-Match. */

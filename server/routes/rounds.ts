@@ -12,7 +12,6 @@ import { printDay } from '../services/rounds/printDay.ts';
 import { printSheet } from '../services/rounds/printSheet.ts';
 import { sendDay } from '../services/rounds/sendDay.ts';
 
-
 /** Rounds: a plan's vines sent to people for a day. Crew see their own. */
 export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
   const router = Router({ mergeParams: true });

@@ -97,7 +97,6 @@ export async function acceptInvitation(answer: z.infer<typeof invitationAnswer>,
   });
 }
 
-
 async function openInvitation(token: string, now: Date): Promise<Invitation> {
   const invitation = await Invitation.query().findOne({ tokenHash: hashToken(token) });
   if (!invitation) throw new Missing(say('unknownInvitation'));

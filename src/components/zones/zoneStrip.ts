@@ -59,7 +59,6 @@ export function chosenRows(choice: StripChoice, strip: readonly StripRow[], rows
   });
 }
 
-
 /** The zone that a split along the one chosen row would cut: the zone asked for where the row crosses it, else the one with most of the row. */
 export function zoneToSplit(strip: readonly StripRow[], choice: StripChoice | null, asked: number | null): number | null {
   if (choice === null || choice.rowIds.length !== 1) return null;

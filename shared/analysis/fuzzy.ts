@@ -97,13 +97,17 @@ export interface Fuzziness {
   readonly fpi: number;
   /** Partition entropy −Σ u ln u / n. */
   readonly entropy: number;
-  /** Normalised classification entropy H / ln k, 0 … 1. Smaller is better. */
+  /** Normalised classification entropy H / (1 − k/n), for comparing with published tables. NaN with no more points than zones. */
   readonly nce: number;
+  /** H / ln k, 0 … 1 whatever k and n are: what a zoning records. Smaller is better. */
+  readonly entropyShare: number;
 }
 
 /**
- * The two validity figures. FPI is printed in both directions in the literature; here 0 is crisp. NCE divides by ln k
- * (Bezdek 1981), which stays meaningful when points are few; the other norm in use is 1 − k/n.
+ * The validity figures. FPI is printed in both directions in the literature; here 0 is crisp. The entropy has two norms, both
+ * in Bezdek 1981: 1 − k/n, which soil zoning took over as NCE (McBratney & Moore 1985; Odeh, McBratney & Chittleborough 1992;
+ * all from memory), and its largest value ln k. With thousands of cells the first is H itself and grows with k, so that
+ * numbers of zones are compared by the second.
  */
 export function fuzziness(memberships: Float64Array, k: number): Fuzziness {
   const count = memberships.length / k;
@@ -115,7 +119,7 @@ export function fuzziness(memberships: Float64Array, k: number): Fuzziness {
   }
   const partitionCoefficient = squares / count;
   const entropy = logs / count;
-  return { partitionCoefficient, fpi: 1 - (k * partitionCoefficient - 1) / (k - 1), entropy, nce: entropy / Math.log(k) };
+  return { partitionCoefficient, fpi: 1 - (k * partitionCoefficient - 1) / (k - 1), entropy, nce: count > k ? entropy / (1 - k / count) : Number.NaN, entropyShare: entropy / Math.log(k) };
 }
 
 function weightedCentres(points: PointTable, memberships: Float64Array, exponent: number): Float64Array {

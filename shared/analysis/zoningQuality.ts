@@ -29,7 +29,7 @@ export function rateFits({ points }: FeatureTable, fits: readonly ZoneFit[], see
     const partition = describePartition(points, fit.labels, fit.k, total);
     const common = { k: fit.k, inertia: fit.inertia, varianceExplained: varianceExplained(partition) };
     if (fit.k === 1) return { ...common, silhouette: null, calinskiHarabasz: null, daviesBouldin: null, stability: null, fuzzinessIndex: null, classificationEntropy: null };
-    const { fpi, nce } = fuzziness(membershipsFrom(sample, fit.centres), fit.k);
+    const { fpi, entropyShare } = fuzziness(membershipsFrom(sample, fit.centres), fit.k);
     return {
       ...common,
       silhouette: finite(silhouetteOf[several.indexOf(fit)]!),
@@ -37,7 +37,7 @@ export function rateFits({ points }: FeatureTable, fits: readonly ZoneFit[], see
       daviesBouldin: finite(daviesBouldin(points, fit.labels, partition)),
       stability: finite(halfSplitStability(sample, { k: fit.k, random: streamOf(seed, SAMPLE_STREAM + fit.k), splits: 2, restarts: 3 })),
       fuzzinessIndex: fpi,
-      classificationEntropy: nce,
+      classificationEntropy: entropyShare,
     };
   });
 }

@@ -119,7 +119,9 @@ export interface ZoneEvidence {
   readonly daviesBouldin: number | null;
   /** Agreement between fits on random halves (adjusted Rand index). */
   readonly stability: number | null;
+  /** FPI, 0 where every cell belongs to one zone, 1 where all belong to all. */
   readonly fuzzinessIndex: number | null;
+  /** Entropy of the memberships over ln k, 0…1; not the norm 1 − k/n of published tables (`fuzziness` gives both). */
   readonly classificationEntropy: number | null;
   /** ln of how much less is left within the zones than in random fields without zones, on the calm cells. */
   readonly gap: number | null;

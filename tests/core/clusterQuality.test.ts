@@ -151,11 +151,14 @@ describe('fuzzy membership', () => {
 
   it('measures fuzziness in the direction in which 0 is crisp', () => {
     // Worked by hand from the definitions; the opposite print of FPI in the literature would be 0.4758.
-    const { partitionCoefficient, fpi, entropy, nce } = fuzziness(memberships, 3);
+    const { partitionCoefficient, fpi, entropy, nce, entropyShare } = fuzziness(memberships, 3);
     expect(partitionCoefficient).toBeCloseTo(0.650555556, 8);
     expect(fpi).toBeCloseTo(0.524166667, 8);
     expect(entropy).toBeCloseTo(0.636713648, 8);
-    expect(nce).toBeCloseTo(0.579561739, 8);
+    expect(entropyShare).toBeCloseTo(0.579561739, 8);
+    // Odeh, McBratney & Chittleborough 1992: over 1 − 3/6, which six points make larger than one.
+    expect(nce).toBeCloseTo(1.273427297, 8);
+    expect(fuzziness(Float64Array.from([1, 0, 0, 1]), 2).nce).toBeNaN();
     expect(fuzziness(Float64Array.from([1, 0, 0, 1]), 2).fpi).toBe(0);
   });
 
@@ -167,6 +170,8 @@ describe('fuzzy membership', () => {
     expect(figures.partitionCoefficient).toBeCloseTo(0.783394631, 5);
     expect(figures.fpi).toBeCloseTo(0.324908053, 5);
     expect(figures.entropy).toBeCloseTo(0.395493628, 5);
+    expect(figures.entropyShare).toBeCloseTo(0.359993814, 5);
+    expect(figures.nce).toBeCloseTo(0.403564927, 5);
     expect(fit.objective / 150).toBeCloseTo(0.403371408, 6);
     const byPetal = [0, 1, 2].map((zone) => [...fit.centres.slice(zone * 4, zone * 4 + 4)]).sort((a, b) => a[2]! - b[2]!);
     const expected = [5.00397, 3.41409, 1.48281, 0.25354, 5.88886, 2.76104, 4.36384, 1.39726, 6.77492, 3.05236, 5.64667, 2.0535];

@@ -29,7 +29,7 @@ describe('the label of a vine', () => {
   const grid: GridFrame = { x0: 0, y0: 8, cellSizeM: 2, cols: 5, rows: 4 };
   const labels = Uint8Array.from(digits('11100' + '11022' + '00022' + '33022'));
 
-  // worked by hand on the picture above
+  // Source: worked by hand on the picture above.
   it.each([
     [1, 7, 1], [7, 7, 1], [5, 5, 1], [5, 3, 2], [1, 3, 1], [3, 3, 1], [4.9, 1, 3], [5.1, 1, 2], [5, 1, 3], [9.9, 7.9, 2], [14, 1, 0],
   ])('at (%d, %d) is %d', (x, y, label) => {
@@ -39,7 +39,7 @@ describe('the label of a vine', () => {
 });
 
 describe('one piece of a row', () => {
-  // expected runs: full enumeration in Python
+  // Source: full enumeration of all labellings in Python for short pieces, a plain dynamic programme in Python for the two longest.
   it.each([
     ['111211112221222222', 2, 2, 4, '1x8 2x10', 2, 1, 2, 8],
     ['1112221111', 2, 1, 3, '1x3 2x3 1x4', 0, 2, 1, 3],

@@ -13,5 +13,5 @@ export function zonesKml(input: ZoneExport): Buffer {
 /** The rows as KML, one placemark a stretch of one zone, in the zone's colour. */
 export function rowsKml(input: ZoneExport): Buffer {
   const colours = new Map(input.zones.map(({ number, colour }) => [number, colour]));
-  return kmlOf(rowFeatures(input), ({ values: [row, from, to, zone] }) => ({ label: `${row} ${from}–${to}: ${zone}`, colour: colours.get(zone as number) ?? null }));
+  return kmlOf(rowFeatures(input), ({ values: [row, from, to, zone, name] }) => ({ label: `${row}: ${from}–${to}, ${zone}${name ? ` ${name}` : ''}`, colour: colours.get(zone as number) ?? null }));
 }

@@ -32,6 +32,12 @@ export interface ZoneReport {
   smoothingM: number;
   smallestPatchHa: number;
   borders: 'free' | 'wholeRow' | 'partRow';
+  standardise: 'plain' | 'robust';
+  principalComponents: boolean;
+  /** Names of the blocks it was computed together with. */
+  together: readonly string[];
+  /** Steps by hand that changed ground or numbers since. */
+  handEdits: number;
 }
 
 export interface ReportLayer {

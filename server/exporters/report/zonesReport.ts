@@ -31,7 +31,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   zoneTable(page, report, words);
   if (report.reasons.length > 0) {
     heading(page, words.texts.why as string);
-    paragraph(page, [...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
+    paragraph(page, [...(report.handEdits > 0 ? [filled(words.texts.byHand as string, { n: report.handEdits })] : []), ...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
   }
   layerTable(page, report, words);
   method(page, report, words);
@@ -49,10 +49,12 @@ interface Words {
   patch: string;
 }
 
-function wordsOf({ language, units, timeZone, smallestPatchHa }: ZoneReport): Words {
+function wordsOf({ language: spoken, units, timeZone, smallestPatchHa }: ZoneReport): Words {
+  // English dates are written as where the units come from.
+  const language = spoken === 'en' && units === 'metric' ? 'en-GB' : spoken;
   const figure = (value: number, decimals: number) => new Intl.NumberFormat(language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
   return {
-    texts: reportTexts[language],
+    texts: reportTexts[spoken],
     figure,
     day: (at) => new Intl.DateTimeFormat(language, { dateStyle: 'long', timeZone }).format(at),
     patch: `${figure((smallestPatchHa * 10_000) / squareMetres[units].each, 2)} ${squareMetres[units].unit}`,
@@ -76,7 +78,10 @@ function verdictOf({ verdict, isJudged, advisedZones }: ZoneReport, texts: Repor
 function reasonsOf({ reasons, layers, language }: ZoneReport, texts: ReportTexts): string[] {
   const nameOf = (about: string) => layers.find(({ layerId }) => layerId === about)?.name ?? reportMeasures[language][about] ?? about;
   const list = new Intl.ListFormat(language, { type: 'conjunction' });
-  return [...groupBy(reasons, ({ code }) => code)]
+  // What fruit confirms comes before what it does not show.
+  const isSilent = ({ code }: { code: string }) => code === 'fruit-silent';
+  const inOrder = [...reasons.filter((reason) => !isSilent(reason)), ...reasons.filter(isSilent)];
+  return [...groupBy(inOrder, ({ code }) => code)]
     .map(([code, same]) => filled(texts.reason[code] ?? '', { about: list.format(same.flatMap(({ about }) => (about === null ? [] : [nameOf(about)]))) }))
     .filter((text) => text !== '');
 }
@@ -146,7 +151,13 @@ function method(page: Page, report: ZoneReport, { texts, length, patch }: Words)
   keepRoom(page, 70);
   heading(page, texts.how as string);
   const made = filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch });
-  paragraph(page, report.borders === 'free' ? made : `${made} ${texts[report.borders]}`);
+  paragraph(page, [
+    made,
+    ...(report.standardise === 'robust' ? [texts.robust] : []),
+    ...(report.principalComponents ? [texts.components] : []),
+    ...(report.together.length > 0 ? [filled(texts.together as string, { blocks: new Intl.ListFormat(report.language).format(report.together) })] : []),
+    ...(report.borders === 'free' ? [] : [texts[report.borders]]),
+  ].join(' '));
 }
 
 function limits(page: Page, report: ZoneReport, { texts, length }: Words): void {

@@ -12,6 +12,7 @@ import { loadBlockLayers } from '../../ground/zoneLayers.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Person } from '../../models/Person.ts';
+import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
 import { fileName } from './fileName.ts';
@@ -39,9 +40,19 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
     zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
     boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
     smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa, borders: view.options.borders,
+    standardise: view.options.standardise, principalComponents: view.options.principalComponents, together: view.withBlockNames,
+    handEdits: asked.zones === null || asked.zones === zoning.chosenZones ? await handEdits(access, zoningId) : 0,
   });
   await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });
   return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };
+}
+
+/** Names and colours leave the ground as it was computed. */
+const harmless = new Set(['rename', 'recolour']);
+
+async function handEdits(access: Access, zoningId: string): Promise<number> {
+  const edits = await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId, undone: false }).select('operation');
+  return edits.filter(({ operation }) => !harmless.has((operation as { kind: string }).kind)).length;
 }
 
 async function layersOf(access: Access, view: ZoningView): Promise<ReportLayer[]> {

@@ -63,19 +63,24 @@ async function measuredLayers(access: Access, zoning: Zoning, ground: BlockVines
 
 /** Each measured layer of the run against the nearest one of its kind from another season. */
 function otherLayers({ chosen, all }: MeasuredLayers): ZoningSeasons['layers'] {
+  const seen = new Set<string>();
   return chosen.flatMap((one) => {
     const [other] = all.filter((candidate) => isOtherSeason(one, candidate)).sort((a, b) => daysApart(one, a) - daysApart(one, b));
     const agreement = other ? seasonAgreement(decodeFloatCells(one.placed.cells), decodeFloatCells(other.placed.cells)) : null;
-    if (!other || !agreement) return [];
+    // Of two layers of one run each may be the other's nearest: they are told of once.
+    const pair = other ? [one.layer.id, other.layer.id].sort().join(' ') : '';
+    if (!other || !agreement || seen.has(pair)) return [];
+    seen.add(pair);
     return [{ layerId: one.layer.id, name: one.layer.name, measuredOn: one.layer.measuredOn!, otherId: other.layer.id, otherName: other.layer.name, otherMeasuredOn: other.layer.measuredOn!, ...agreement }];
   });
 }
 
 /** Where each measured layer of the run keeps its rank over all seasons that have one of its kind. */
 async function steadyGround({ chosen, all, smoothingM }: MeasuredLayers, ground: BlockVines): Promise<ZoningSeasons['ground']> {
-  const found = await Promise.all(chosen.map(async (one) => {
-    const seasons = oneASeason(one, all);
-    if (seasons.length < 2) return [];
+  const series = chosen.map((one) => ({ one, seasons: oneASeason(one, all) }));
+  const idsOf = (seasons: readonly PlacedOnBlock[]) => seasons.map(({ layer }) => layer.id).join(' ');
+  const once = series.filter(({ seasons }, at) => seasons.length >= 2 && series.findIndex((other) => idsOf(other.seasons) === idsOf(seasons)) === at);
+  const found = await Promise.all(once.map(async ({ one, seasons }) => {
     const { id, type, name } = one.layer;
     const input: StableGroundInput = { grid: gridOf(ground), seasons: seasons.map(({ placed }) => decodeFloatCells(placed.cells)), smoothingM: layerType(type).showsRows ? smoothingM : 0 };
     const stable = await runCompute<StableGround | null>('stableGround', input, { lane: 'quick' });

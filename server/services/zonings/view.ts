@@ -5,7 +5,7 @@ import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import type { Zone as TracedZone, ZoneDifference, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
 import type { FruitCheck } from '../../../shared/analysis/verdictFruit.ts';
 import type { VerdictResult } from '../../../shared/analysis/verdict.ts';
-import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type ZoningView } from '../../../shared/contracts/zonings.ts';
+import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type ZoningRequestOptions, type ZoningView } from '../../../shared/contracts/zonings.ts';
 import { sampleSize } from '../../../shared/sampling/sampleSize.ts';
 import type { Access } from '../../access/access.ts';
 import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -73,7 +73,7 @@ async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
   }));
 }
 
-/** The whole record of a zoning, with the zones of one number: those kept, else the number asked for, else the advised one. */
+/** The whole record of a zoning, with the zones of one number: `shown`, else those kept, else the number that was fixed for the run, else the advised one. */
 export async function viewZoning(access: Access, zoningId: string, shown: number | null): Promise<ZoningView> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const [line] = await linesOf(access, [zoning]);
@@ -82,7 +82,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
   const evidence = zoning.evidence as StoredEvidence | null;
   const verdict = zoning.verdict as VerdictResult | null;
   const kept = zoning.baseLabels !== null;
-  const count = kept && shown === null ? (zoning.chosenZones ?? 1) : (shown ?? Math.max(1, zoning.advisedZones ?? 1));
+  const count = kept && shown === null ? (zoning.chosenZones ?? 1) : (shown ?? fixedNumber(options.data) ?? Math.max(1, zoning.advisedZones ?? 1));
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: count });
   const stored = candidate ? (candidate.zones as StoredCandidate) : null;
   const showsKept = kept && (shown === null || shown === zoning.chosenZones);
@@ -106,6 +106,11 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
     problem: job?.problem ?? null,
   };
+}
+
+/** The number of zones that was asked for, where it was not left to the advice. */
+function fixedNumber(options: ZoningRequestOptions | undefined): number | null {
+  return options === undefined || options.zones === 'advise' ? null : options.zones;
 }
 
 async function layersOf(access: Access, layerIds: string[], evidence: StoredEvidence | null): Promise<ZoningView['layers']> {

@@ -1,28 +1,27 @@
 /**
  * Refractometers are defined at 20 °C. Instruments that compensate must not be corrected again, so the first answer
- * is a question. From 5 to 20 °C the correction is that of table I of OIV method OIV-MA-AS2-02. Above 20 °C the table was
- * not at hand: its rows from 10 to 17 °C are continued through 20 °C by a parabola (least squares, within 0.006 of every one
- * of these rows), with a range that widens with the square of the distance. The refractive index of water, continued the
- * same way, is 0.04 °Brix off at 30 °C.
+ * is a question. What is not compensated is corrected by published rows only: below 20 °C those of table I of OIV method
+ * OIV-MA-AS2-02, above it those of ICUMSA SPS-3 (1998), which agrees with the OIV's from 15 to 19 °C to 0.01. Rows from
+ * 5 to 25 °C were at hand, and the method itself wants the juice at 20 ± 5 °C; outside them nothing is corrected.
  */
 export type RefractometerAnswer =
   | { readonly kind: 'asRead'; readonly brix: number }
   /** Nobody said whether the instrument compensates. */
   | { readonly kind: 'ask' }
-  | { readonly kind: 'corrected'; readonly low: number; readonly middle: number; readonly high: number };
+  | { readonly kind: 'corrected'; readonly low: number; readonly middle: number; readonly high: number }
+  /** Colder or warmer than the published rows. */
+  | { readonly kind: 'beyond'; readonly fromC: number; readonly toC: number };
 
 const REFERENCE_C = 20;
 
-/** °Brix a degree and a squared degree, for 10, 15, 20, 25 and 30 °Brix as read. */
-const warmCurves = [[0.06916, 0.001019], [0.06975, 0.000754], [0.07158, 0.000667], [0.07266, 0.000544], [0.07523, 0.00061]];
-/** By how much the continued curve may be off, besides the rounding of the table. */
-const WARM_ERROR_PER_SQUARED_DEGREE = 0.0005;
-
-/** What is taken off at 5, 10, 15 and 20 °C, for 10, 15, 20, 25 and 30 °Brix as read; between them a straight line is within 0.03 of the table (0.01 from 15 °Brix on). */
-const coldStepC = 5;
+/** What is added at each temperature (°C), for 10, 15, 20, 25 and 30 °Brix as read; between them a straight line is within 0.03 of the rows (0.01 from 15 °C on). */
+const rows: readonly (readonly [temperatureC: number, added: readonly number[]])[] = [
+  [5, [-0.82, -0.87, -0.92, -0.95, -0.99]], [10, [-0.59, -0.62, -0.65, -0.67, -0.69]], [15, [-0.32, -0.33, -0.34, -0.35, -0.36]], [20, [0, 0, 0, 0, 0]],
+  [21, [0.07, 0.07, 0.07, 0.07, 0.08]], [22, [0.14, 0.14, 0.15, 0.15, 0.15]], [23, [0.21, 0.22, 0.22, 0.23, 0.23]], [24, [0.29, 0.29, 0.3, 0.3, 0.31]], [25, [0.36, 0.37, 0.38, 0.38, 0.39]],
+];
+const [fromC, toC] = [rows[0]![0], rows.at(-1)![0]];
 const brixStep = 5;
-const coldTable = [[0.82, 0.87, 0.92, 0.95, 0.99], [0.59, 0.62, 0.65, 0.67, 0.69], [0.32, 0.33, 0.34, 0.35, 0.36], [0, 0, 0, 0, 0]];
-/** Rounding of the table and the line between its rows. */
+/** Rounding of the rows and the line between them. */
 const TABLE_ERROR = 0.03;
 
 export interface RefractometerReading {
@@ -32,33 +31,22 @@ export interface RefractometerReading {
   readonly compensates: boolean | null;
 }
 
-/** Warm juice reads low: the correction is added above 20 °C and taken off below. */
+/** Warm juice reads low: the correction is added above 20 °C and taken off below; `middle` in °Brix at 20 °C, with its range. */
 export function correctRefractometer({ brix, temperatureC, compensates }: RefractometerReading): RefractometerAnswer {
-  const degrees = temperatureC - REFERENCE_C;
-  if (compensates === true || degrees === 0) return { kind: 'asRead', brix };
+  if (compensates === true || temperatureC === REFERENCE_C) return { kind: 'asRead', brix };
   if (compensates === null) return { kind: 'ask' };
-  if (temperatureC >= coldStepC && degrees < 0) {
-    const middle = brix - coldCorrection(brix, temperatureC);
-    return { kind: 'corrected', low: middle - TABLE_ERROR, middle, high: middle + TABLE_ERROR };
-  }
-  const middle = brix + warmCorrection(brix, degrees);
-  const error = TABLE_ERROR + WARM_ERROR_PER_SQUARED_DEGREE * degrees * degrees;
-  return { kind: 'corrected', low: middle - error, middle, high: middle + error };
-}
-
-/** Straight lines between the curves around; beyond 10 and 30 °Brix the nearest one. Below 5 °C, where the table ends, it serves as well. */
-function warmCorrection(brix: number, degrees: number): number {
-  const column = Math.min(4, Math.max(0, brix / brixStep - 2));
-  const left = Math.min(3, Math.floor(column));
-  const at = (index: number) => warmCurves[index]![0]! * degrees + warmCurves[index]![1]! * degrees * degrees;
-  return at(left) * (1 - (column - left)) + at(left + 1) * (column - left);
+  if (temperatureC < fromC || temperatureC > toC) return { kind: 'beyond', fromC, toC };
+  const middle = brix + added(brix, temperatureC);
+  return { kind: 'corrected', low: middle - TABLE_ERROR, middle, high: middle + TABLE_ERROR };
 }
 
 /** Straight lines between the four values around; beyond 10 and 30 °Brix the nearest column. */
-function coldCorrection(brix: number, temperatureC: number): number {
-  const [row, column] = [temperatureC / coldStepC - 1, Math.min(4, Math.max(0, brix / brixStep - 2))];
-  const [top, left] = [Math.min(2, Math.floor(row)), Math.min(3, Math.floor(column))];
-  const at = (down: number, right: number) => coldTable[top + down]![left + right]!;
-  const [down, right] = [row - top, column - left];
-  return (at(0, 0) * (1 - right) + at(0, 1) * right) * (1 - down) + (at(1, 0) * (1 - right) + at(1, 1) * right) * down;
+function added(brix: number, temperatureC: number): number {
+  const top = Math.min(rows.length - 2, rows.findLastIndex(([at]) => at <= temperatureC));
+  const [[above, first], [below, second]] = [rows[top]!, rows[top + 1]!];
+  const column = Math.min(4, Math.max(0, brix / brixStep - 2));
+  const left = Math.min(3, Math.floor(column));
+  const along = (values: readonly number[]) => values[left]! * (left + 1 - column) + values[left + 1]! * (column - left);
+  const down = (temperatureC - above) / (below - above);
+  return along(first) * (1 - down) + along(second) * down;
 }

@@ -53,6 +53,7 @@ export function readValues(values: readonly LooseValue[], reading: Reading, aski
         own = answer.middle;
         corrected = true;
       }
+      if (answer.kind === 'beyond' && beyondTable({ value, temperature, from: answer.fromC, to: answer.toC }, reading, asking) !== 'keep') continue;
     }
     if (Number.isNaN(own) || !isPlausible(measure, value.unit, figure.value)) {
       if (settled({ code: 'cellOdd', line: value.line, title: value.title, text: cellText(value.cell), canKeep: !Number.isNaN(own) }, reading, asking) !== 'keep') continue;
@@ -68,6 +69,13 @@ function settled(cell: DoubtfulCell, { settle }: Reading, asking: Asking): strin
   if (settle) return settle(cell);
   const { code, line, title, text, canKeep } = cell;
   return asking.ask(`cell:${line}:${title}`, { code, params: { line, title, text }, choices: canKeep ? ['keep', 'leaveOut'] : ['leaveOut'] });
+}
+
+/** What becomes of readings that no published row corrects: asked once a file, since a warm morning is warm for every bag. */
+function beyondTable({ value, temperature, from, to }: { value: LooseValue; temperature: number; from: number; to: number }, { settle }: Reading, asking: Asking): string | null {
+  const { line, title } = value;
+  if (settle) return settle({ code: 'uncorrected', line, title, text: cellText(value.cell), canKeep: true });
+  return asking.ask('beyondTable', { code: 'beyondTable', params: { line, title, temperature, from, to }, choices: ['keep', 'leaveOut'] });
 }
 
 /** The decimal mark that the clear cells prove; asked only when ambiguous ones are left that could be either. */

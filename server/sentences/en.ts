@@ -108,6 +108,7 @@ export const en = {
   onePhoto: 'Send one picture at a time in the field "files".',
   badFacts: 'Send what the photo shows as JSON in the field "facts".',
   unknownRowOfPhoto: 'This row is not a row of a block of this estate.',
+  noSuchVine: 'Row {row} has vines {first} to {last}; there is no vine {vine}. Look at the row again.',
   roundOfOthers: 'This round is not one of yours in this estate.',
   noJpeg: 'This file is no JPEG picture. Take the photo again, or save it as JPEG first.',
   damagedJpeg: 'This JPEG picture is damaged: it ends before the picture begins. Take the photo again.',

@@ -109,6 +109,7 @@ export const es: Record<SentenceKey, string> = {
   onePhoto: 'Envíe una foto cada vez, en el campo «files».',
   badFacts: 'Envíe lo que muestra la foto como JSON, en el campo «facts».',
   unknownRowOfPhoto: 'Esta hilera no es de ninguna parcela de esta finca.',
+  noSuchVine: 'La hilera {row} tiene las cepas {first} a {last}; no hay cepa {vine}. Mire la hilera otra vez.',
   roundOfOthers: 'Esta ronda no es una de las suyas en esta finca.',
   noJpeg: 'Este archivo no es una imagen JPEG. Haga la foto otra vez o guárdela antes como JPEG.',
   damagedJpeg: 'Esta imagen JPEG está dañada: termina antes de que empiece la imagen. Haga la foto otra vez.',

@@ -109,6 +109,7 @@ export const fr: Record<SentenceKey, string> = {
   onePhoto: 'Envoyez une image à la fois dans le champ « files ».',
   badFacts: 'Envoyez en JSON, dans le champ « facts », ce que montre la photo.',
   unknownRowOfPhoto: 'Ce rang n’est pas un rang d’une parcelle de ce domaine.',
+  noSuchVine: 'Le rang {row} a les ceps {first} à {last} ; il n’y a pas de cep {vine}. Regardez le rang à nouveau.',
   roundOfOthers: 'Cette tournée n’est pas une des vôtres dans ce domaine.',
   noJpeg: 'Ce fichier n’est pas une image JPEG. Reprenez la photo, ou enregistrez-la d’abord en JPEG.',
   damagedJpeg: 'Cette image JPEG est abîmée : elle s’arrête avant que l’image commence. Reprenez la photo.',

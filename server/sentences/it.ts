@@ -109,6 +109,7 @@ export const it: Record<SentenceKey, string> = {
   onePhoto: 'Inviare un’immagine alla volta nel campo «files».',
   badFacts: 'Inviare come JSON, nel campo «facts», ciò che mostra la foto.',
   unknownRowOfPhoto: 'Questo filare non è un filare di un appezzamento di questa tenuta.',
+  noSuchVine: 'Il filare {row} ha i ceppi da {first} a {last}; il ceppo {vine} non esiste. Ricontrolli il filare.',
   roundOfOthers: 'Questo giro non è uno dei suoi in questa tenuta.',
   noJpeg: 'Questo file non è un’immagine JPEG. Rifare la foto o salvarla prima come JPEG.',
   damagedJpeg: 'Questa immagine JPEG è danneggiata: finisce prima che l’immagine cominci. Rifare la foto.',

@@ -109,6 +109,7 @@ export const pt: Record<SentenceKey, string> = {
   onePhoto: 'Envie uma foto de cada vez, no campo «files».',
   badFacts: 'Envie o que a foto mostra como JSON, no campo «facts».',
   unknownRowOfPhoto: 'Este bardo não é de nenhuma parcela desta quinta.',
+  noSuchVine: 'O bardo {row} tem as cepas {first} a {last}; não há cepa {vine}. Veja o bardo outra vez.',
   roundOfOthers: 'Esta ronda não é uma das suas nesta quinta.',
   noJpeg: 'Este ficheiro não é uma imagem JPEG. Tire a foto de novo ou guarde-a primeiro como JPEG.',
   damagedJpeg: 'Esta imagem JPEG está danificada: acaba antes de a imagem começar. Tire a foto de novo.',

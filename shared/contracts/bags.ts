@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { LABEL_LETTERS, readLabelCode } from '../field/labelCode.ts';
 import { id, isoTime } from './common.ts';
-import { refusalCode } from './readings.ts';
+import { refusalCode, refusalFacts } from './readings.ts';
 
 /** A label as typed or scanned; what reaches the services is the bare code. */
 export const labelCode = z.string().max(300).transform((text, context) => {
@@ -50,6 +50,8 @@ export const bagOutcome = z.object({
   state: z.enum(['received', 'conflict', 'refused']),
   reason: z.string().nullable(),
   code: refusalCode.optional(),
+  /** What the phone's own words name, such as the row and its last vine. */
+  facts: refusalFacts.optional(),
   /** Of a conflict: where the label was used first, for the phone's own words. */
   usedBy: z.object({ bagId: id, rowLabel: z.string().nullable(), vineNumber: z.number().int().nullable(), person: z.string().nullable(), closedAt: z.string().nullable() }).nullable(),
 });

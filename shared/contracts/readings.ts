@@ -42,11 +42,12 @@ export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).
 
 /** Why something that came from a phone was not stored: phones have the words in five languages. */
 export const refusalCode = z.enum(['blockElsewhere', 'noSuchMeasure', 'otherUnit', 'rowElsewhere', 'notYourRound', 'needsRound', 'readerUnknown', 'bagElsewhere', 'correctsUnknown', 'noSeason', 'otherContent', 'noSuchVine']);
+/** What the words of a code name: a row, its vines. */
+export const refusalFacts = z.record(z.string(), z.union([z.string(), z.number()]));
 export interface Refusal {
   readonly code: z.infer<typeof refusalCode>;
   readonly reason: string;
-  /** What the words of the code name: a row, its vines. */
-  readonly facts?: Readonly<Record<string, string | number>>;
+  readonly facts?: Readonly<z.infer<typeof refusalFacts>>;
 }
 
 export const readingOutcome = z.object({
@@ -55,7 +56,7 @@ export const readingOutcome = z.object({
   state: z.enum(['received', 'conflict', 'refused']),
   reason: z.string().nullable(),
   code: refusalCode.optional(),
-  facts: z.record(z.string(), z.union([z.string(), z.number()])).optional(),
+  facts: refusalFacts.optional(),
 });
 export type ReadingOutcome = z.infer<typeof readingOutcome>;
 

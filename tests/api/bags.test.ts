@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Bag } from '../../server/models/Bag.ts';
+import { BlockRow } from '../../server/models/BlockRow.ts';
 import { MailMessage } from '../../server/models/MailMessage.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { labelCode, spellLabelCode } from '../../shared/field/labelCode.ts';
@@ -69,6 +70,15 @@ describe('bags closed in the row', () => {
     const [late, wrong] = await close(agronomist, bag({ closedAt: '1999-09-01T07:41:00Z' }), bag({ vines: [{ rowId: other.rows[0]!.id, ordinal: 1 }] }));
     expect(late!.reason).toMatch(/1999-09-01/);
     expect(wrong!.reason).toMatch(/row/);
+  });
+
+  it('are refused with a vine that its row does not have, by row and last vine, and the rest of the batch is kept', async () => {
+    const { label, pieces, vineCount } = await BlockRow.query().findById(block.rows[2]!.id).throwIfNotFound();
+    const last = pieces[0]!.firstVine + vineCount - 1;
+    const [none, there] = await close(agronomist, bag({ vines: vinesOf(2, last, last + 1) }), bag({ code: labelCode(1001), vines: vinesOf(2, last) }));
+    expect(none).toMatchObject({ state: 'refused', code: 'noSuchVine', facts: { row: label, first: 1, last: vineCount } });
+    expect(there!.state).toBe('received');
+    expect(await Bag.query().resultSize()).toBe(1);
   });
 
   it('of another estate are not found', async () => {

@@ -1,5 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { BlockRow } from '../../server/models/BlockRow.ts';
 import { FieldPhoto } from '../../server/models/FieldPhoto.ts';
 import type { FieldPhotoView } from '../../shared/contracts/fieldPhotos.ts';
 import { makeFieldRound, type FieldRoundMade } from './support/makeFieldRound.ts';
@@ -59,5 +60,19 @@ describe('a photo of a vine', () => {
     expect((await made.crew[0]!.agent.write('post', base()).field('facts', '{').attach('files', picture, 'a.jpg')).body.code).toBe('badFacts');
     expect(files.kept()).toHaveLength(before);
     expect(files.incoming()).toEqual([]);
+  });
+
+  it('of a vine that its row does not have is refused by row and last vine, unless the round was sent for it', async () => {
+    const [target] = made.targets;
+    const row = await BlockRow.query().findById(target!.rowId).throwIfNotFound();
+    const answer = await send(made.crew[0]!.agent, facts({ ordinal: row.pieces[0]!.firstVine + row.vineCount }));
+    expect(answer.status).toBe(422);
+    expect(answer.body).toMatchObject({ code: 'noSuchVine', detail: expect.stringContaining(`Row ${row.label} has vines 1 to ${row.vineCount}`) });
+    const { vineCount } = row;
+    // The row was shortened while the phone was away.
+    await row.$query().patch({ vineCount: target!.ordinal - row.pieces[0]!.firstVine });
+    expect((await send(made.crew[0]!.agent, facts())).status).toBe(201);
+    expect((await send(made.manager, facts({ roundId: null }))).body.code).toBe('noSuchVine');
+    await row.$query().patch({ vineCount });
   });
 });

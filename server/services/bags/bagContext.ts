@@ -3,6 +3,7 @@ import type { NewBag } from '../../../shared/contracts/bags.ts';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
 import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { Access } from '../../access/access.ts';
+import { plannedVines, type NamedGround } from '../../ground/strangeVine.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Block } from '../../models/Block.ts';
 import { BlockRow } from '../../models/BlockRow.ts';
@@ -12,7 +13,7 @@ import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Season } from '../../models/Season.ts';
 
 /** Everything of the estate that a batch of bags refers to, loaded in sets. */
-export interface BagContext {
+export interface BagContext extends NamedGround {
   estateTimeZone: string;
   blocks: Set<string>;
   rows: Map<string, BlockRow>;
@@ -31,7 +32,7 @@ export async function loadBagContext(trx: Transaction, access: Access, bags: rea
   // Labels of an estate are given out one batch after the other, so that two phones cannot take one label at the same moment.
   await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
   const estate = await Estate.query(trx).findById(estateId).throwIfNotFound();
-  const blocks = await Block.query(trx).where({ estateId }).whereIn('id', [...new Set(bags.map(({ blockId }) => blockId))]).select('id');
+  const blocks = await Block.query(trx).where({ estateId }).whereIn('id', [...new Set(bags.map(({ blockId }) => blockId))]).select('id', 'vineOneEnd');
   const rows = await BlockRow.query(trx).where({ estateId }).whereIn('id', [...new Set(bags.flatMap(({ vines }) => vines.map(({ rowId }) => rowId)))]);
   const roundQuery = Round.query(trx).where({ estateId }).whereIn('id', [...new Set(bags.flatMap(({ roundId }) => roundId ?? []))]).select('id');
   if (ownRoundsOnly) roundQuery.whereIn('id', RoundPerson.query(trx).where({ estateId, personId: access.personId }).select('roundId'));
@@ -42,6 +43,8 @@ export async function loadBagContext(trx: Transaction, access: Access, bags: rea
   return {
     estateTimeZone: estate.timeZone,
     blocks: new Set(blocks.map(({ id }) => id)),
+    vineOneEnd: new Map(blocks.map((block) => [block.id, block.vineOneEnd])),
+    planned: await plannedVines(trx, estateId, rounds.map(({ id }) => id)),
     rows: new Map(rows.map((row) => [row.id, row])),
     rounds: new Set(rounds.map(({ id }) => id)),
     ownRoundsOnly,

@@ -2,6 +2,7 @@ import type { Transaction } from 'objection';
 import { newBag, type BagBatchAnswer, type BagOutcome, type NewBag } from '../../../shared/contracts/bags.ts';
 import type { Refusal } from '../../../shared/contracts/readings.ts';
 import { requireReach, type Access } from '../../access/access.ts';
+import { strangeVine } from '../../ground/strangeVine.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Person } from '../../models/Person.ts';
@@ -66,6 +67,10 @@ function refusalOf(bag: NewBag, context: BagContext): Answer | null {
   if (bag.roundId !== null && !context.rounds.has(bag.roundId)) return refused(bag.id, { code: 'notYourRound', reason: 'This round is not one of yours in this estate.' });
   if (bag.roundId === null && context.ownRoundsOnly) return refused(bag.id, { code: 'needsRound', reason: 'Crew close bags within a round that was sent to them.' });
   if (bag.vines.some(({ rowId }) => context.rows.get(rowId)?.blockId !== bag.blockId)) return refused(bag.id, { code: 'rowElsewhere', reason: 'A row of this bag is not a row of the block.' });
+  for (const { rowId, ordinal } of bag.vines) {
+    const strange = strangeVine(context.rows.get(rowId)!, ordinal, context);
+    if (strange !== null) return refused(bag.id, strange);
+  }
   if (seasonOn(context.seasons, bag.closedAt, context.estateTimeZone) === null) return refused(bag.id, { code: 'noSeason', reason: `No season of this estate holds ${bag.closedAt.slice(0, 10)}. Check the clock, or make the season first.` });
   return null;
 }

@@ -5,7 +5,9 @@ import { newFieldPhoto, type FieldPhotoView, type NewFieldPhoto } from '../../..
 import { requireReach, type Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { loadBlockVines } from '../../ground/blockVines.ts';
+import { plannedVines, strangeVine } from '../../ground/strangeVine.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
+import { Block } from '../../models/Block.ts';
 import { BlockRow } from '../../models/BlockRow.ts';
 import { FieldPhoto } from '../../models/FieldPhoto.ts';
 import { Person } from '../../models/Person.ts';
@@ -49,13 +51,17 @@ function readFacts(text: unknown): unknown {
   }
 }
 
-async function refuseStrange(access: Access, { blockId, rowId, roundId }: NewFieldPhoto): Promise<void> {
+async function refuseStrange(access: Access, { blockId, rowId, ordinal, roundId }: NewFieldPhoto): Promise<void> {
   const { estateId, personId } = access;
-  if (!(await BlockRow.query().findOne({ estateId, blockId, id: rowId }))) throw new Missing(say('unknownRowOfPhoto'));
+  const row = await BlockRow.query().findOne({ estateId, blockId, id: rowId });
+  if (!row) throw new Missing(say('unknownRowOfPhoto'));
   const isOwnOnly = requireReach(access, 'readings.record', 'own') === 'own';
   const round = roundId === null ? undefined : await Round.query().findOne({ estateId, id: roundId });
   const isMine = round && (!isOwnOnly || (await RoundPerson.query().findOne({ estateId, roundId: round.id, personId })));
   if ((roundId !== null || isOwnOnly) && !isMine) throw new Missing(say('roundOfOthers'));
+  const { vineOneEnd } = await Block.query().findOne({ estateId, id: blockId }).select('vineOneEnd').throwIfNotFound();
+  const strange = strangeVine(row, ordinal, { vineOneEnd: new Map([[blockId, vineOneEnd]]), planned: await plannedVines(undefined, estateId, roundId === null ? [] : [roundId]) });
+  if (strange !== null) throw new Unusable(strange.code, say('noSuchVine', strange.facts!));
 }
 
 /** Photos, newest first; those who record only their own see their own. */

@@ -2,6 +2,7 @@ import type { Transaction } from 'objection';
 import type { NewReading, VineFinding } from '../../../shared/contracts/readings.ts';
 import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { Access } from '../../access/access.ts';
+import { plannedVines, type NamedGround } from '../../ground/strangeVine.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Block } from '../../models/Block.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -12,16 +13,11 @@ import { Reading } from '../../models/Reading.ts';
 import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Season } from '../../models/Season.ts';
-import { Target } from '../../models/Target.ts';
-import { plannedKey } from './strangeVine.ts';
 
 /** Everything of the estate that a batch refers to, loaded in sets. */
-export interface BatchContext {
+export interface BatchContext extends NamedGround {
   blocks: Set<string>;
   rows: Map<string, BlockRow>;
-  vineOneEnd: Map<string, 'start' | 'end'>;
-  /** Vines that the rounds of the batch were sent for, targets and reserves. */
-  planned: Set<string>;
   rounds: Set<string>;
   bags: Set<string>;
   measures: Map<string, MeasureRecord>;
@@ -45,7 +41,7 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
   const blocks = await Block.query(trx).where({ estateId }).whereIn('id', [...ids((reading) => reading.blockId), ...new Set(findings.map(({ blockId }) => blockId))]).select('id', 'vineOneEnd');
   const rows = await BlockRow.query(trx).where({ estateId }).whereIn('id', rowIds);
   const roundRows = await rounds;
-  const targets = await Target.query(trx).where({ estateId }).whereIn('planId', Round.query(trx).where({ estateId }).whereIn('id', roundRows.map(({ id }) => id)).select('planId')).select('rowId', 'ordinal', 'reserveRowId', 'reserveOrdinal');
+  const planned = await plannedVines(trx, estateId, roundRows.map(({ id }) => id));
   const { timeZone } = await Estate.query(trx).findById(estateId).select('timeZone').throwIfNotFound();
   const bags = await Bag.query(trx).where({ estateId }).whereIn('id', ids((reading) => reading.bagId)).select('id');
   const measures = await MeasureRecord.query(trx).where({ estateId });
@@ -61,7 +57,7 @@ export async function loadBatchContext(trx: Transaction, access: Access, batch: 
     blocks: new Set(blocks.map((block) => block.id)),
     rows: new Map(rows.map((row) => [row.id, row])),
     vineOneEnd: new Map(blocks.map((block) => [block.id, block.vineOneEnd])),
-    planned: new Set(targets.flatMap(({ rowId, ordinal, reserveRowId, reserveOrdinal }) => [plannedKey(rowId, ordinal), ...(reserveRowId === null || reserveOrdinal === null ? [] : [plannedKey(reserveRowId, reserveOrdinal)])])),
+    planned,
     rounds: new Set(roundRows.map((round) => round.id)),
     bags: new Set(bags.map((bag) => bag.id)),
     measures: new Map(measures.map((measure) => [measure.code, measure])),

@@ -1,5 +1,5 @@
 import type { NewReading, Refusal } from '../../../shared/contracts/readings.ts';
-import { strangeVine } from './strangeVine.ts';
+import { strangeVine } from '../../ground/strangeVine.ts';
 import type { BatchContext } from './batchContext.ts';
 
 export const clockToleranceMs = 5 * 60_000;

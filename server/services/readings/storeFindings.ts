@@ -5,7 +5,7 @@ import type { Access } from '../../access/access.ts';
 import { writeVines } from '../../models/Vine.ts';
 import { VineFindingRecord } from '../../models/VineFindingRecord.ts';
 import type { BatchContext } from './batchContext.ts';
-import { strangeVine } from './strangeVine.ts';
+import { strangeVine } from '../../ground/strangeVine.ts';
 
 /** Stores findings once each and marks the census with the fresh ones, as proposals where the role may only propose. */
 export async function storeFindings(trx: Transaction, access: Access, findings: readonly VineFinding[], context: BatchContext): Promise<ReadingOutcome[]> {

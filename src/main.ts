@@ -10,6 +10,7 @@ import { deviceLanguage, i18n, showLanguage } from './lib/i18n.ts';
 import { readStored } from './lib/deviceStore.ts';
 import type { Language } from './lib/format.ts';
 import { primeVueOptions } from './lib/theme.ts';
+import { orNothing } from './offline/fieldDatabase.ts';
 import { totalWaiting } from './offline/waiting.ts';
 import { createAppRouter } from './router/index.ts';
 import { views } from './router/views.ts';
@@ -57,7 +58,7 @@ async function start(): Promise<void> {
   watchForUpdate((load) => {
     // A new program takes over only an empty outbox: what waits was written by the old one, and goes with it.
     const loadWhenSent = async (): Promise<void> => {
-      const waiting = session.person ? await totalWaiting(session.person.id) : 0;
+      const waiting = session.person ? await orNothing(totalWaiting(session.person.id), 0) : 0;
       if (waiting > 0) useNoticesStore().say(i18n.global.t('field.updateWaits', { n: waiting }, waiting), { kind: 'stop' });
       else load();
     };

@@ -4,7 +4,7 @@ import type { VineState } from '../../shared/contracts/rows.ts';
 import { afterKey, isOdd, valueOf, type Key } from '../../shared/field/valueEntry.ts';
 import type { StopVine } from '../../shared/field/walkState.ts';
 import { smallPicture } from '../lib/smallPicture.ts';
-import type { Entry } from '../offline/fieldDatabase.ts';
+import { isStoreFailure, type Entry } from '../offline/fieldDatabase.ts';
 import { isAtStop } from '../offline/newEntry.ts';
 import { useFieldStore } from '../stores/field.ts';
 import { useFieldBagsStore } from '../stores/fieldBags.ts';
@@ -36,7 +36,8 @@ export function useWalkActs({ round, stop, vine, measure, openIndex, lastEntry }
   const photoProblem = ref<'unreadable' | 'notKept' | null>(null);
   const isInClosedBag = ref(false);
   const isBusy = ref(false);
-  const notKept = ref(false);
+  /** What the phone's store would not do, until something goes well again. */
+  const trouble = ref<'notKept' | 'notTakenBack' | 'notClosed' | null>(null);
   const isTypingLab = ref(false);
 
   function press(key: Key): void {
@@ -83,12 +84,12 @@ export function useWalkActs({ round, stop, vine, measure, openIndex, lastEntry }
   async function isKept(writing: Promise<void>, index: number): Promise<boolean> {
     try {
       await writing;
-      notKept.value = false;
+      trouble.value = null;
       feedback.kept();
       return true;
     } catch {
       // No room, or the browser took the store away. Whatever the reason, the person must know before the next vine.
-      [notKept.value, at.value, mode.value] = [true, index, 'keys'];
+      [trouble.value, at.value, mode.value] = ['notKept', index, 'keys'];
       feedback.asks();
       return false;
     }
@@ -118,11 +119,23 @@ export function useWalkActs({ round, stop, vine, measure, openIndex, lastEntry }
     try {
       if (await field.undo(entry)) at.value = Math.max(0, index);
       else if (entry.kind === 'reading') correcting.value = entry;
-      [text.value, mode.value] = [entry.reading?.valueTyped ?? '', 'keys'];
+      [text.value, mode.value, trouble.value] = [entry.reading?.valueTyped ?? '', 'keys', null];
+    } catch (error) {
+      if (!isStoreFailure(error)) throw error;
+      trouble.value = 'notTakenBack';
+      feedback.asks();
     } finally {
       isBusy.value = false;
     }
   }
 
-  return { text, mode, count, photoProblem, isInClosedBag, notKept, isTypingLab, press, save, notThis, pick, photograph, undo };
+  /** Answers whether the phone has noted that the round is closed. */
+  async function close(): Promise<boolean> {
+    const isNoted = await field.closeRound(round.value!.id);
+    trouble.value = isNoted ? null : 'notClosed';
+    if (!isNoted) feedback.asks();
+    return isNoted;
+  }
+
+  return { text, mode, count, photoProblem, isInClosedBag, trouble, isTypingLab, press, save, notThis, pick, photograph, undo, close };
 }

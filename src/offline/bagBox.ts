@@ -12,8 +12,7 @@ import { patienceMs } from './patience.ts';
 export async function addBag(bag: KeptBag): Promise<KeptBag | null> {
   const transaction = (await fieldDatabase()).transaction('bags', 'readwrite', { durability: 'strict' });
   const holder = (await transaction.store.index('code').getAll(bag.code)).find(({ outcome }) => outcome?.state !== 'refused');
-  if (!holder) void transaction.store.add(structuredClone(bag));
-  await transaction.done;
+  await Promise.all([holder ? null : transaction.store.add(structuredClone(bag)), transaction.done]);
   return holder ?? null;
 }
 
@@ -35,11 +34,11 @@ async function sendAll(personId: string, now: () => Date): Promise<void> {
     try {
       const { outcomes } = await http.post<BagBatchAnswer>(`/api/estates/${estateId}/bags`, { bags: bags.map(({ bag }) => ({ ...bag, deviceTime: now().toISOString() })) }, { withinMs: patienceMs });
       const transaction = (await fieldDatabase()).transaction('bags', 'readwrite', { durability: 'strict' });
-      for (const bag of bags) {
+      const notes = bags.map((bag) => {
         const outcome = outcomes.find(({ id }) => id === bag.id);
-        if (outcome) void transaction.store.put({ ...bag, received: outcome.state === 'refused' ? 0 : 1, outcome });
-      }
-      await transaction.done;
+        return outcome && transaction.store.put({ ...bag, received: outcome.state === 'refused' ? 0 : 1, outcome });
+      });
+      await Promise.all([...notes, transaction.done]);
     } catch (error) {
       if (error instanceof HttpProblem) return;
       throw error;

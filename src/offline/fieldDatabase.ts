@@ -96,12 +96,36 @@ export type FieldDatabase = IDBPDatabase<FieldSchema>;
 
 let opened: Promise<FieldDatabase> | null = null;
 
+/** The browser gives no store at all, or will not open it. */
+export class NoStore extends Error {}
+
+/** True of what the phone's own store answers when it is not given, was taken away, or has no room. */
+export const isStoreFailure = (error: unknown): boolean => error instanceof NoStore || error instanceof DOMException;
+
+/** Null where the phone's store failed: for what is tried again with the next sending. Other errors are thrown on. */
+export async function unlessStoreFails<T>(work: Promise<T>): Promise<T | null> {
+  try {
+    return await work;
+  } catch (error) {
+    if (isStoreFailure(error)) return null;
+    throw error;
+  }
+}
+
 /** What the phone holds, or nothing where its store cannot be read: the self-test says so, and everything else goes on without. */
 export const orNothing = <T, N>(reading: Promise<T>, nothing: N): Promise<T | N> => reading.catch(() => nothing);
 
 /** The phone's own store. One connection a page; rejects where the browser gives none, and tries again the next time. */
 export async function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatabase> {
-  opened ??= openDB<FieldSchema>(name, 3, {
+  opened ??= open(name).catch((error: unknown) => {
+    opened = null;
+    throw new NoStore('The browser gives no store.', { cause: error });
+  });
+  return opened;
+}
+
+async function open(name: string): Promise<FieldDatabase> {
+  return openDB<FieldSchema>(name, 3, {
     upgrade(database, before) {
       if (before < 3) database.createObjectStore('closings', { keyPath: 'key' });
       if (before < 2) {
@@ -124,9 +148,5 @@ export async function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatab
       (event.target as IDBDatabase).close();
     },
     terminated: () => void (opened = null),
-  }).catch((error: unknown) => {
-    opened = null;
-    throw error;
   });
-  return opened;
 }

@@ -11,8 +11,7 @@ const batchSize = 100;
 /** Adds what was typed. When this resolves, it is on the phone and survives the phone's restart. */
 export async function addEntries(entries: readonly Entry[]): Promise<void> {
   const transaction = (await fieldDatabase()).transaction('entries', 'readwrite', { durability: 'strict' });
-  for (const entry of entries) void transaction.store.add(structuredClone(entry));
-  await transaction.done;
+  await Promise.all([...entries.map((entry) => transaction.store.add(structuredClone(entry))), transaction.done]);
 }
 
 /** What has left this page, also where a full phone could not note it. */
@@ -32,8 +31,7 @@ export async function takeBack(ids: readonly string[]): Promise<boolean> {
 export async function setAside(id: string): Promise<void> {
   const transaction = (await fieldDatabase()).transaction('entries', 'readwrite', { durability: 'strict' });
   const entry = await transaction.store.get(id);
-  if (entry) void transaction.store.put({ ...entry, isVoid: true });
-  await transaction.done;
+  await Promise.all([entry && transaction.store.put({ ...entry, isVoid: true }), transaction.done]);
 }
 
 export async function entriesOfRound(personId: string, roundId: string): Promise<Entry[]> {

@@ -8,7 +8,7 @@ import { unlessOffline, unlessRefused } from '../lib/unlessOffline.ts';
 import { sendBags } from '../offline/bagBox.ts';
 import { addClosing, closingsOf, dropClosing, sendClosings } from '../offline/closings.ts';
 import { deviceId } from '../offline/deviceId.ts';
-import { orNothing, type Entry, type KeptPhoto } from '../offline/fieldDatabase.ts';
+import { orNothing, unlessStoreFails, type Entry, type KeptPhoto } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
 import { emptyPhone } from '../offline/emptyPhone.ts';
 import { addEntries, allEntries, entriesOfRound, sendForOthers, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
@@ -123,16 +123,17 @@ export const useFieldStore = defineStore('field', () => {
   /** Tells the office that the walk has begun, if it is in reach: the first reading tells it as well. */
   const tellStart = (roundId: string, startedAt: Date) => unlessRefused(() => http.patch(`/api/estates/${owner.estateId}/rounds/${roundId}`, { state: 'open', startedAt: startedAt.toISOString() }, { withinMs: patienceMs }));
 
-  /** Closes a round on the phone at once; the office is told with the next sending. */
-  async function closeRound(roundId: string): Promise<void> {
-    await addClosing({ ...owner, roundId, at: new Date().toISOString() });
+  /** Closes a round on the phone at once; the office is told with the next sending. False where the phone could not note it. */
+  async function closeRound(roundId: string): Promise<boolean> {
+    const isNoted = (await unlessStoreFails(addClosing({ ...owner, roundId, at: new Date().toISOString() }).then(() => true))) ?? false;
     await count();
-    void send();
+    if (isNoted) void send();
+    return isNoted;
   }
 
   /** The walk goes on after all, as far as the office does not know better. */
   async function reopenRound(roundId: string): Promise<void> {
-    await dropClosing({ ...owner, roundId });
+    await unlessStoreFails(dropClosing({ ...owner, roundId }));
     await count();
   }
 
@@ -181,10 +182,13 @@ export const useFieldStore = defineStore('field', () => {
     if (owner.personId === '') return;
     isSending.value = true;
     try {
-      const { reached } = await sendWaiting(owner.personId, () => new Date());
-      if (reached) await sendBags(owner.personId, () => new Date());
-      if (reached) await sendClosings(owner.personId);
-      if (reached) await sendPhotos(owner.personId);
+      // A phone without room, or without a store, does not hold up what comes after: each is sent as far as it goes, and again the next time.
+      const gone = await unlessStoreFails(sendWaiting(owner.personId, () => new Date()));
+      if (gone?.reached) {
+        await unlessStoreFails(sendBags(owner.personId, () => new Date()));
+        await unlessStoreFails(sendClosings(owner.personId));
+        await unlessStoreFails(sendPhotos(owner.personId));
+      }
     } finally {
       isSending.value = false;
       tellOtherTabs();
@@ -197,7 +201,7 @@ export const useFieldStore = defineStore('field', () => {
   async function sendOthers(): Promise<void> {
     isSending.value = true;
     try {
-      await sendForOthers(owner, () => new Date());
+      await unlessStoreFails(sendForOthers(owner, () => new Date()));
     } finally {
       isSending.value = false;
       await count();

@@ -10,7 +10,7 @@ function tokensOf(selector: string): Record<string, string> {
   return Object.fromEntries([...body.matchAll(/--([a-z-]+):\s*(#[0-9A-F]{6})/gi)].map((match) => [match[1]!, match[2]!]));
 }
 const light = tokensOf(':root');
-const themes = { light, dark: { ...light, ...tokensOf('.dark') }, outdoor: { ...light, ...tokensOf('.outdoor') } };
+const themes = { light, dark: { ...light, ...tokensOf('.dark') }, outdoor: { ...light, ...tokensOf('.outdoor') }, night: { ...light, ...tokensOf('.outdoor'), ...tokensOf('.night') } };
 
 describe('contrast', () => {
   // WCAG 2.2, 1.4.3 and 1.4.6: black on white is 21, white on white 1.
@@ -29,8 +29,15 @@ describe('contrast', () => {
 
   it.each(Object.keys(themes) as (keyof typeof themes)[])('%s: chips and filled buttons reach 4.5', (theme) => {
     const token = themes[theme];
-    const pairs: [string, string][] = [['moss', 'moss-soft'], ['amber', 'amber-soft'], ['brick', 'brick-soft'], ['sky', 'sky-soft'], ['on', 'slate'], ['on', 'slate-deep'], ['on', 'lees'], ['mark-ink', 'mark']];
+    const pairs: [string, string][] = [['moss', 'moss-soft'], ['amber', 'amber-soft'], ['brick', 'brick-soft'], ['sky', 'sky-soft'], ['on', 'slate'], ['on', 'slate-deep'], ['on', 'lees'], ['mark-ink', 'mark'], ['sign-ink', 'moss'], ['sign-ink', 'brick']];
     expect(pairs.filter(([word, ground]) => contrast(token[word]!, token[ground]!) < 4.5)).toEqual([]);
+  });
+
+  // WCAG 2.2, 1.4.6.
+  it.each(['outdoor', 'night'] as const)('%s: figures and words in the row reach 7, on every ground and sign', (theme) => {
+    const token = themes[theme];
+    const pairs: [string, string][] = [...['ink', 'muted', 'slate', 'brick', 'moss', 'amber', 'sky'].map((word): [string, string] => [word, 'ground']), ['on', 'slate'], ['mark-ink', 'mark'], ['sign-ink', 'moss'], ['sign-ink', 'brick']];
+    expect(pairs.filter(([word, ground]) => contrast(token[word]!, token[ground]!) < 7)).toEqual([]);
   });
 
   it.each(Object.keys(themes) as (keyof typeof themes)[])('%s: borders of controls reach 3', (theme) => {

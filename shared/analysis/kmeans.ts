@@ -8,6 +8,7 @@
 import { AnalysisError } from './analysisError.ts';
 import { exchangePoints } from './kmeansExchange.ts';
 import { refineCentres, type KMeansRun } from './kmeansLloyd.ts';
+import { nearestWithDoubt } from './kmeansNearest.ts';
 import { sampleIndices, selectPoints, type PointTable } from './kmeansPoints.ts';
 import { moreCentres, seedCentres } from './kmeansSeeding.ts';
 import type { Random } from './random.ts';
@@ -83,22 +84,5 @@ function differentRuns(ranked: readonly KMeansRun[]): KMeansRun[] {
 
 /** Nearest centre of every point: the zone of cells that were not in the sample the fit was made on. */
 export function assignToCentres(points: PointTable, centres: Float64Array): Uint8Array {
-  const { values, count, dimensions } = points;
-  const k = centres.length / dimensions;
-  const labels = new Uint8Array(count);
-  for (let point = 0; point < count; point++) {
-    let best = Infinity;
-    for (let zone = 0, c = 0; zone < k; zone++) {
-      let squared = 0;
-      for (let f = 0; f < dimensions; f++, c++) {
-        const difference = values[point * dimensions + f]! - centres[c]!;
-        squared += difference * difference;
-      }
-      if (squared < best) {
-        best = squared;
-        labels[point] = zone;
-      }
-    }
-  }
-  return labels;
+  return nearestWithDoubt(points, centres).labels;
 }

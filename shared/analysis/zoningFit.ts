@@ -6,6 +6,7 @@
 
 import type { Cells, Grid } from './grid.ts';
 import { fitKMeans } from './kmeans.ts';
+import { nearestWithDoubt } from './kmeansNearest.ts';
 import { sampleIndices, selectPoints, type PointTable } from './kmeansPoints.ts';
 import { principalComponents } from './principal.ts';
 import { seededRandom, type Random } from './random.ts';
@@ -78,37 +79,6 @@ export function fitZones({ points }: FeatureTable, seed: number): ZoneFit[] {
     fits.push({ k, centres, ...nearestWithDoubt(points, centres) });
   }
   return fits;
-}
-
-/**
- * Nearest centre of every point with the doubt about it, 0 … 1. For fuzzy memberships with exponent 2 (Bezdek 1981) the
- * ratio of the second largest membership to the largest, called confusion index in soil mapping (Burrough, van Gaans &
- * Hootsmans 1997, from memory), is the ratio of the squared distances.
- */
-export function nearestWithDoubt({ values, count, dimensions }: PointTable, centres: Float64Array): Pick<ZoneFit, 'labels' | 'inertia' | 'doubt'> {
-  const k = centres.length / dimensions;
-  const labels = new Uint8Array(count);
-  const doubt = new Float32Array(count);
-  let inertia = 0;
-  for (let point = 0; point < count; point++) {
-    let best = Infinity;
-    let next = Infinity;
-    for (let zone = 0, c = 0; zone < k; zone++) {
-      let squared = 0;
-      for (let f = 0, p = point * dimensions; f < dimensions; f++, p++, c++) {
-        const difference = values[p]! - centres[c]!;
-        squared += difference * difference;
-      }
-      if (squared < best) {
-        next = best;
-        best = squared;
-        labels[point] = zone;
-      } else if (squared < next) next = squared;
-    }
-    inertia += best;
-    doubt[point] = k === 1 ? 0 : next > 0 ? best / next : 1;
-  }
-  return { labels, inertia, doubt };
 }
 
 export interface CellZones {

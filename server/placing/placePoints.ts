@@ -7,7 +7,8 @@ import { layerType } from '../../shared/catalog/layerTypes.ts';
 import { unitFactor } from '../../shared/catalog/sourceUnits.ts';
 import type { AsideReading } from '../../shared/contracts/layers.ts';
 import type { LonLat } from '../../shared/geo/coordinates.ts';
-import { fromUtm, toUtm } from '../../shared/geo/utm.ts';
+import { fromUtm } from '../../shared/geo/utm.ts';
+import { toUtmNear, type PlacesXY } from '../../shared/geo/utmNear.ts';
 import type { PlacedCells, PlaceInput, PlacedLayer } from './placed.ts';
 import { factsFromAnswers, placeOnBlocks } from './placeRaster.ts';
 
@@ -31,8 +32,9 @@ export function placePoints({ source, blocks }: PlaceInput, points: PointReading
   const factor = unitFactor(answers.purpose!, answers.unit);
   const readings = { ...points, value: points.value.map((each) => each * factor) };
   const grids = blocks.map((block) => defineGrid(block.boundary, block.cellSizeM));
+  const projected = inMetres(readings.lonLat);
   const surveys = grids.map((grid): Survey => {
-    const near = readingsNear(grid, readings);
+    const near = readingsNear(grid, readings, projected(grid.epsg));
     const taken = answers.takenBack ?? [];
     const cleaned = cleanPoints(near, { ...layerType(type), speed: near.speed, isOutside: outsideOf(grid, near), off: taken });
     return { grid, near, cleaned, surface: surveySurface(grid, cleaned.kept), taken };
@@ -61,18 +63,24 @@ interface Survey {
   taken: NonNullable<PlaceInput['source']['answers']['takenBack']>;
 }
 
+/** Positions by UTM zone, each projected once however many blocks lie in it. */
+function inMetres(lonLat: readonly LonLat[]): (epsg: number) => PlacesXY {
+  const known = new Map<number, PlacesXY>();
+  return (epsg) => {
+    const places = known.get(epsg) ?? toUtmNear(lonLat, epsg);
+    known.set(epsg, places);
+    return places;
+  };
+}
+
 /** Readings within reach of a grid, in its metres and in their order. */
-function readingsNear(grid: Grid, { lonLat, value, speed }: PointReadings): Near {
-  const [x, y, kept]: [number[], number[], number[]] = [[], [], []];
-  lonLat.forEach((position, at) => {
-    const [east, north] = toUtm(position, grid.epsg);
-    const isNear = east > grid.x0 - widestReachM && east < grid.x0 + grid.cols * grid.cellSizeM + widestReachM && north < grid.y0 + widestReachM && north > grid.y0 - grid.rows * grid.cellSizeM - widestReachM;
-    if (!isNear) return;
-    x.push(east);
-    y.push(north);
-    kept.push(at);
-  });
-  return { x: Float64Array.from(x), y: Float64Array.from(y), value: Float64Array.from(kept, (at) => value[at]!), speed: speed ? Float64Array.from(kept, (at) => speed[at]!) : null };
+function readingsNear(grid: Grid, { value, speed }: PointReadings, { x, y }: PlacesXY): Near {
+  const kept: number[] = [];
+  const [west, east] = [grid.x0 - widestReachM, grid.x0 + grid.cols * grid.cellSizeM + widestReachM];
+  const [south, north] = [grid.y0 - grid.rows * grid.cellSizeM - widestReachM, grid.y0 + widestReachM];
+  for (let at = 0; at < x.length; at++) if (x[at]! > west && x[at]! < east && y[at]! > south && y[at]! < north) kept.push(at);
+  const pick = (from: Float64Array) => Float64Array.from(kept, (at) => from[at]!);
+  return { x: pick(x), y: pick(y), value: pick(value), speed: speed ? pick(speed) : null };
 }
 
 /** A block with readings enough of its own does not need those of the turning ground around it (judgement). */
@@ -84,8 +92,8 @@ function outsideOf(grid: Grid, near: ValuedPoints): (x: number, y: number) => bo
     const cell = cellAt(grid, [x, y]);
     return cell >= 0 && grid.share[cell]! > 0;
   };
-  // A position is good to a metre or two: a cell next to the block still counts as the block.
-  const around = [-1, 0, 1].flatMap((east) => [-1, 0, 1].map((north) => [east * grid.cellSizeM, north * grid.cellSizeM] as const));
+  // A position is good to a metre or two: a cell next to the block still counts as the block. Most lie in it: its own cell is asked first.
+  const around = [0, -1, 1].flatMap((east) => [0, -1, 1].map((north) => [east * grid.cellSizeM, north * grid.cellSizeM] as const));
   return (x, y) => !around.some(([east, north]) => touches(x + east, y + north));
 }
 

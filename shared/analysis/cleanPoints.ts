@@ -39,18 +39,22 @@ const samePlaceM = 0.05;
 export function cleanPoints({ x, y, value }: ValuedPoints, rules: CleaningRules): CleanedPoints {
   const { speed = null, isOutside = () => false, off = [] } = rules;
   const reasons = new Array<SetAsideReason | null>(x.length).fill(null);
-  const remaining = () => [...reasons.keys()].filter((point) => reasons[point] === null);
+  const remaining = () => {
+    const points: number[] = [];
+    for (let point = 0; point < reasons.length; point++) if (reasons[point] === null) points.push(point);
+    return points;
+  };
   const pick = (from: Float64Array, points: readonly number[]) => Float64Array.from(points, (point) => from[point]!);
   const picked = (points: readonly number[]) => ({ x: pick(x, points), y: pick(y, points), value: pick(value, points) });
   const mark = (reason: SetAsideReason, is: (point: number) => boolean) => {
     if (!off.includes(reason)) for (const point of remaining()) if (is(point)) reasons[point] = reason;
   };
-  const taken = new Set<string>();
+  const isTaken = placesTaken();
   // A point without a value can never be used, whatever a person wishes.
   for (const point of remaining()) if (Number.isNaN(value[point]!)) reasons[point] = 'missing';
   mark('impossible', (point) => (rules.min !== null && value[point]! < rules.min) || (rules.max !== null && value[point]! > rules.max));
   mark('outside', (point) => isOutside(x[point]!, y[point]!));
-  mark('samePlace', (point) => isTaken(taken, x[point]!, y[point]!));
+  mark('samePlace', (point) => isTaken(x[point]!, y[point]!));
   const moving = remaining();
   const odd = oddSpeeds(picked(moving), speed === null ? null : pick(speed, moving));
   const isOdd = new Set(moving.filter((_, at) => odd[at] === 1));
@@ -63,9 +67,13 @@ export function cleanPoints({ x, y, value }: ValuedPoints, rules: CleaningRules)
   return { kept: picked(remaining()), setAside: setAsideReasons.map((reason) => ({ reason, count: aside.filter((each) => each.reason === reason).length })), aside };
 }
 
-function isTaken(taken: Set<string>, x: number, y: number): boolean {
-  const place = `${Math.round(x / samePlaceM)} ${Math.round(y / samePlaceM)}`;
-  if (taken.has(place)) return true;
-  taken.add(place);
-  return false;
+/** Tells of each place in turn whether one before it was the same. Steps of a place in UTM fit into one number: under 2 ** 28 of them north, 2 ** 25 east. */
+function placesTaken(): (x: number, y: number) => boolean {
+  const taken = new Set<number>();
+  return (x, y) => {
+    const place = Math.round(x / samePlaceM) * 2 ** 28 + Math.round(y / samePlaceM);
+    if (taken.has(place)) return true;
+    taken.add(place);
+    return false;
+  };
 }

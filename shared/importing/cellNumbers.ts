@@ -37,6 +37,8 @@ export interface CellNumber {
 export function columnMark(cells: Iterable<string>, table: DecimalMark): DecimalMark {
   let [points, commas] = [0, 0];
   for (const cell of cells) {
+    // One point is as good as many; only a comma can still change the answer.
+    if (points > 0 && !cell.includes(',')) continue;
     if (/^[+-]?\d*\.(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?\.\d+/.test(cell)) points++;
     else if (/^[+-]?\d*,(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?,\d+/.test(cell)) commas++;
   }
@@ -51,10 +53,25 @@ export function isMissingWord(cell: string): boolean {
   return missingWords.test(cell);
 }
 
+/** The number of a cell that is nothing but digits and a decimal point, as nearly every cell of a long table is; else null. */
+export function plainNumber(text: string, mark: DecimalMark): number | null {
+  let points = 0;
+  const from = text.charCodeAt(0) === minus ? 1 : 0;
+  for (let at = from; at < text.length; at++) {
+    const code = text.charCodeAt(at);
+    if (code >= zero && code <= nine) continue;
+    // A point may stand for thousands where the comma is the decimal mark.
+    if (code !== point || mark === ',' || ++points > 1 || at === from || at === text.length - 1) return null;
+  }
+  return text.length === from ? null : Number(text);
+}
+
+const [minus, point, zero, nine] = [45, 46, 48, 57];
+
 /** The number in a cell; thousands (also by spaces and apostrophes) are taken out, a unit behind it is split off. Empty cells and words are NaN. */
 export function cellNumber(text: string, mark: DecimalMark): CellNumber {
-  // Nearly every cell of a long table; a point may stand for thousands where the comma is the decimal mark.
-  if (/^-?\d+(?:\.\d+)?$/.test(text) && (mark === '.' || !text.includes('.'))) return { value: Number(text), unit: '' };
+  const plainly = plainNumber(text, mark);
+  if (plainly !== null) return { value: plainly, unit: '' };
   const cell = text.replace(/(?<=\d)['’\u00a0\u2009\u202f](?=\d{3})/g, '');
   // A comma with other than three digits behind it parts no thousands, whatever the rest of the table does.
   const plain = mark === ',' ? cell.replace(/\.(?=\d{3}(\D|$))/g, '').replace(',', '.') : cell.replace(/,(?=\d{3}(\D|$))/g, '').replace(/^([+-]?\d+),(?=\d+(\D|$))/, '$1.');

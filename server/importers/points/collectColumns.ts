@@ -1,5 +1,5 @@
 import type { ImportWarning } from '../understood.ts';
-import { cellNumber, columnMark, isMissingWord, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
+import { cellNumber, columnMark, isMissingWord, plainNumber, type DecimalMark } from '../../../shared/importing/cellNumbers.ts';
 import type { ParsedTable } from './parseTable.ts';
 
 export interface CollectedColumns {
@@ -16,13 +16,21 @@ export function collectColumns(table: ParsedTable, kept: readonly number[], { ma
   const out: CollectedColumns = { numbers: new Map(), texts: new Map(), warnings: [] };
   for (const [column, name] of table.names.entries()) {
     if (skip.includes(column)) continue;
+    const cells = kept.map((row) => table.rows[row]![column] ?? '');
     const values = new Float64Array(kept.length);
     const units = new Set<string>();
     let filled = 0;
     let numeric = 0;
-    const own = columnMark(kept.map((row) => table.rows[row]![column] ?? ''), mark);
-    for (const [at, row] of kept.entries()) {
-      const cell = table.rows[row]![column] ?? '';
+    const own = columnMark(cells, mark);
+    for (let at = 0; at < cells.length; at++) {
+      const cell = cells[at]!;
+      const plain = plainNumber(cell, own);
+      if (plain !== null) {
+        values[at] = plain;
+        filled++;
+        numeric++;
+        continue;
+      }
       const { value, unit } = cellNumber(cell, own);
       values[at] = value;
       if (cell !== '' && !isMissingWord(cell)) filled++;
@@ -30,7 +38,6 @@ export function collectColumns(table: ParsedTable, kept: readonly number[], { ma
       if (unit !== '' && units.size < 4) units.add(unit);
     }
     if (filled === 0 || numeric < MOSTLY * filled) {
-      const cells = kept.map((row) => table.rows[row]![column] ?? '');
       out.texts.set(name, cells);
       out.warnings.push(...textWarnings(name, cells));
       continue;

@@ -76,6 +76,8 @@ interface Cell {
 function packedMinutes({ rows }: ParsedTable, { x, y, frame }: PositionColumns, mark: { x: DecimalMark; y: DecimalMark }): ((cell: Cell, cells: readonly string[], at: number) => Cell) | null {
   if (frame !== 'lonlat') return null;
   const values = (column: number, own: DecimalMark) => rows.map((cells) => cellNumber(cells[column] ?? '', own).value).filter((value) => !Number.isNaN(value) && value !== 0);
+  // Degrees that nowhere exceed those of the globe are no packed minutes; most tables end here.
+  if (!rows.some((cells) => Math.abs(cellNumber(cells[y] ?? '', mark.y).value) > 90)) return null;
   const isPacked = (value: number, most: number) => Math.abs(value) <= 100 * most + 60 && Math.abs(value) % 100 < 60;
   const [lons, lats] = [values(x, mark.x), values(y, mark.y)];
   const isAll = lons.length > 0 && lats.length > 0 && lons.every((value) => isPacked(value, 180)) && lats.every((value) => isPacked(value, 90));

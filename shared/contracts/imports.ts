@@ -79,6 +79,8 @@ export const questionChoice = z.object({
   /** Some positions of the file as this answer would place them; pictures have none. */
   sampleLonLat: z.array(lonLat).optional(),
   distanceKm: z.number().nullable(),
+  /** Metres by which it may lie aside, where the choice is a reference system on a datum that is not today's. */
+  uncertaintyM: z.number().optional(),
 });
 export type QuestionChoice = z.infer<typeof questionChoice>;
 
@@ -141,6 +143,8 @@ export const importView = z.object({
   fileName: z.string(),
   bytes: z.number().nullable(),
   sha256: z.string().nullable(),
+  /** Files that came with it and are parts of it: of a shapefile, or beside a picture. */
+  parts: z.array(z.object({ name: z.string(), bytes: z.number(), sha256: z.string() })),
   format: z.string(),
   state: z.enum(importStates),
   understood: understoodFile.nullable(),

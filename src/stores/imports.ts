@@ -1,7 +1,7 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { ImportAnswers, ImportView, OutlinesTaken } from '../../shared/contracts/imports.ts';
-import { fileGroups } from '../lib/fileGroups.ts';
+import { fileGroups } from '../../shared/importing/fileGroups.ts';
 import { http } from '../lib/http.ts';
 import { HttpProblem } from '../lib/httpProblem.ts';
 import { inPiecesFromBytes, resumableUpload, type ResumableUpload } from '../lib/resumableUpload.ts';
@@ -71,7 +71,7 @@ export const useImportsStore = defineStore('imports', () => {
 
   /** Sends files one after the other, each with its own line; what belongs together goes together. */
   async function send(estateId: string, files: readonly File[]): Promise<ImportView[]> {
-    const waiting = fileGroups(files).map((group) => lineUp(group));
+    const waiting = fileGroups(files).map(({ main, beside }) => lineUp([main, ...beside]));
     const received: ImportView[] = [];
     for (const one of waiting) received.push(...(await sendGroup(estateId, one)));
     return received;

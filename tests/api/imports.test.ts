@@ -4,6 +4,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeFloatCells, decodeLabels } from '../../shared/analysis/cellBytes.ts';
 import { Job } from '../../server/models/Job.ts';
 import { placeLayerJob } from '../../server/services/imports/placeLayer.ts';
+import { writeShapefile } from '../core/importers/writeShapefile.ts';
 import { writeTiff } from '../core/importers/writeTiff.ts';
 import { jobEnd, startFiles, type Files } from './support/withFiles.ts';
 import { lonLatAt, place, rectangle } from './support/shapes.ts';
@@ -376,6 +377,33 @@ describe('what was received', () => {
     expect(received.status).toBe(201);
     expect(received.body.items.map((item: { state: string }) => item.state)).toEqual(['asks', 'refused']);
     expect(received.body.items[1]).toMatchObject({ fileId: null, problem: { code: 'wrong-type' } });
+  });
+
+
+  it('takes the loose parts of a shapefile as one file, and keeps each by its hash', async () => {
+    const corner = (x: number, y: number) => [...lonLatAt(x, y)];
+    const parts = writeShapefile({ records: [[[corner(0, 0), corner(0, 90), corner(90, 90), corner(90, 0), corner(0, 0)]]], rows: [['Long Acre']] });
+    const prj = 'GEOGCS["GCS_WGS_1984",DATUM["D_WGS_1984",SPHEROID["WGS_1984",6378137.0,298.257223563]],PRIMEM["Greenwich",0.0],UNIT["Degree",0.0174532925199433]]';
+    const received = await upload({ name: 'acre.dbf', bytes: parts.dbf }, { name: 'acre.shp', bytes: parts.shp }, { name: 'ACRE.shx', bytes: parts.shx }, { name: 'acre.prj', bytes: prj });
+    expect(received.status, received.text).toBe(201);
+    expect(received.body.items).toHaveLength(1);
+    const [line] = received.body.items;
+    expect(line).toMatchObject({ fileName: 'acre.zip', state: 'asks', format: 'shapes' });
+    expect(line.parts.map(({ name }: { name: string }) => name)).toEqual(['acre.shp', 'acre.dbf', 'ACRE.shx', 'acre.prj']);
+    expect(line.parts[0].sha256).toBe(createHash('sha256').update(parts.shp).digest('hex'));
+    const zip = await agent.get(`${base()}/files/${line.fileId}/download`);
+    expect(zip.status).toBe(200);
+    expect(createHash('sha256').update(zip.body).digest('hex')).toBe(line.sha256);
+    const again = await upload({ name: 'acre.dbf', bytes: parts.dbf }, { name: 'acre.shp', bytes: parts.shp }, { name: 'ACRE.shx', bytes: parts.shx }, { name: 'acre.prj', bytes: prj });
+    expect(again.body.items[0].sha256).toBe(line.sha256);
+  });
+
+  it('refuses the parts of a shapefile without its shapes once', async () => {
+    const parts = writeShapefile({ records: [[[[0, 0], [0, 1], [1, 1], [0, 0]]]] });
+    const received = await upload({ name: 'acre.dbf', bytes: parts.dbf }, { name: 'acre.shx', bytes: parts.shx });
+    expect(received.status).toBe(422);
+    expect(received.body.items).toHaveLength(1);
+    expect(received.body.items[0].problem).toMatchObject({ code: 'missing-part', params: { why: 'no-shp' } });
   });
 
   it('a mask beside the picture takes out what it covers', async () => {

@@ -1,31 +1,32 @@
+import { fileGroups, type FileGroup } from '../../../shared/importing/fileGroups.ts';
 import { auxiliaryText, worldFileEnding } from '../../importers/raster/besidePicture.ts';
 import type { Companions } from '../../placing/placed.ts';
+import { packTogether } from '../../storage/packTogether.ts';
 import { readSmallText, type Upload } from '../../storage/uploads.ts';
 
 export interface Accompanied {
   upload: Upload;
   companions: Companions;
+  /** Files that came with it as parts of it. */
+  parts: readonly Upload[];
 }
 
 const projectionFile = /\.prj$/i;
 const auxiliaryFile = /\.aux\.xml$/i;
 const mask = /\.msk$/i;
-const picture = /\.tiff?$/i;
-const endings = [worldFileEnding, projectionFile, auxiliaryFile, mask];
 
-/** World, projection and auxiliary files and the mask go with the picture of the same name that came along; alone they are files like any other. */
-export async function withCompanions(uploads: readonly Upload[]): Promise<Accompanied[]> {
-  const pictures = uploads.filter((upload) => picture.test(upload.name));
-  // Some are named field.tfw, some field.tif.msk.
-  const belongs = (upload: Upload, ending: RegExp, to: Upload) => ending.test(upload.name) && [to.name, to.name.replace(picture, '')].some((name) => name.toLowerCase() === upload.name.replace(ending, '').toLowerCase());
-  const goesAlong = (upload: Upload) => endings.some((ending) => pictures.some((each) => belongs(upload, ending, each)));
-  return Promise.all(
-    uploads.filter((upload) => !goesAlong(upload)).map(async (upload) => {
-      const beside = (ending: RegExp) => (picture.test(upload.name) ? uploads.find((other) => belongs(other, ending, upload)) : undefined);
-      const auxiliary = auxiliaryText(await readSmallText(beside(auxiliaryFile)));
-      const worldFileText = (await readSmallText(beside(worldFileEnding))) ?? auxiliary.worldFileText;
-      const projectionFileText = (await readSmallText(beside(projectionFile))) ?? auxiliary.projectionFileText;
-      return { upload, companions: { worldFileText, projectionFileText, maskPath: beside(mask)?.path ?? null } };
-    }),
-  );
+/** Files by what belongs together: a picture with what lies beside it, the parts of a shapefile as one archive; alone they are files like any other. */
+export function withCompanions(uploads: readonly Upload[]): Promise<Accompanied[]> {
+  return Promise.all(fileGroups(uploads).map(accompanied));
+}
+
+async function accompanied({ kind, main, beside }: FileGroup<Upload>): Promise<Accompanied> {
+  const none = { worldFileText: null, projectionFileText: null, maskPath: null };
+  if (kind === 'alone' || beside.length === 0) return { upload: main, companions: none, parts: [] };
+  if (kind === 'shapefile') return { upload: await packTogether([main, ...beside], main.name.replace(/\.[^.]*$/, '.zip')), companions: none, parts: [main, ...beside] };
+  const find = (ending: RegExp) => beside.find(({ name }) => ending.test(name));
+  const auxiliary = auxiliaryText(await readSmallText(find(auxiliaryFile)));
+  const worldFileText = (await readSmallText(find(worldFileEnding))) ?? auxiliary.worldFileText;
+  const projectionFileText = (await readSmallText(find(projectionFile))) ?? auxiliary.projectionFileText;
+  return { upload: main, companions: { worldFileText, projectionFileText, maskPath: find(mask)?.path ?? null }, parts: beside };
 }

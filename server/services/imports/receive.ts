@@ -5,15 +5,15 @@ import type { Access } from '../../access/access.ts';
 import { Unusable } from '../../errors.ts';
 import { ImportProblem, shownFileName } from '../../importers/importProblem.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
-import { FileImport, type ImportMemory } from '../../models/FileImport.ts';
+import { FileImport, type ImportMemory, type KeptPart } from '../../models/FileImport.ts';
 import { storable } from '../../models/storable.ts';
 import { StoredFile } from '../../models/StoredFile.ts';
 import type { Described } from '../../placing/describeFile.ts';
-import type { Companions, SourceFile } from '../../placing/placed.ts';
+import type { SourceFile } from '../../placing/placed.ts';
 import { fileStore } from '../../storage/fileStore.ts';
 import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { runCompute } from '../../workers/computePool.ts';
-import { withCompanions } from './companions.ts';
+import { withCompanions, type Accompanied } from './companions.ts';
 import { viewsOf } from './view.ts';
 import { blocksUnder, estatePlace } from './whereabouts.ts';
 import { say } from '../../sentences/say.ts';
@@ -25,24 +25,25 @@ const longestName = 255;
  * not kept, only its name and the reason. Refuses the request as a whole when no file of it can be used.
  */
 export async function receiveFiles(access: Access, uploads: readonly Upload[]): Promise<ImportView[]> {
+  const packed: Upload[] = [];
   try {
     if (uploads.length === 0) throw new Unusable('noFiles', say('noFiles'));
     const estateLonLat = await estatePlace(access.estateId);
     const records: FileImport[] = [];
-    for (const { upload, companions } of await withCompanions(uploads)) records.push(await receiveOne(access, { upload, companions, estateLonLat }));
+    const groups = await withCompanions(uploads);
+    packed.push(...groups.map(({ upload }) => upload));
+    for (const group of groups) records.push(await receiveOne(access, { ...group, estateLonLat }));
     const views = await viewsOf(access, await FileImport.query().where({ estateId: access.estateId }).findByIds(records.map((record) => record.id)).orderBy('createdAt'));
     if (views.every((view) => view.state === 'refused')) {
       throw new Unusable(views[0]!.problem?.code ?? 'refused', views.map((view) => view.problem?.text ?? '').join(' '), { items: views });
     }
     return views;
   } finally {
-    await dropUploads(uploads);
+    await dropUploads([...uploads, ...packed]);
   }
 }
 
-interface Received {
-  upload: Upload;
-  companions: Companions;
+interface Received extends Accompanied {
   estateLonLat: LonLat | null;
 }
 
@@ -82,18 +83,20 @@ export async function requireOverBlocks(estateId: string, fileName: string, outl
   });
 }
 
-async function keep(access: Access, { upload, companions }: Received, described: Described): Promise<FileImport> {
+async function keep(access: Access, { upload, companions, parts }: Received, described: Described): Promise<FileImport> {
   const { sha256, bytes } = await fileStore().keep(upload.path);
   const { maskPath, ...texts } = companions;
-  const mask = maskPath === null ? null : await fileStore().keep(maskPath);
-  const understood: ImportMemory = { file: described.file, asked: described.questions, companions: { ...texts, maskSha256: mask?.sha256 ?? null }, outlines: [] };
+  const kept: (KeptPart & { path: string })[] = [];
+  for (const part of parts) kept.push({ name: shownFileName(part.name), path: part.path, ...(await fileStore().keep(part.path)) });
+  const maskSha256 = kept.find(({ path }) => path === maskPath)?.sha256 ?? null;
+  const understood: ImportMemory = { file: described.file, asked: described.questions, companions: { ...texts, maskSha256, parts: kept.map(({ path: _, ...part }) => part) }, outlines: [] };
   return FileImport.transaction(async (trx) => {
     const file = await StoredFile.query(trx).insert({ estateId: access.estateId, sha256, bytes, originalName: storable(upload.name).slice(0, longestName), uploadedBy: access.personId });
-    if (mask !== null) await StoredFile.query(trx).insert({ estateId: access.estateId, ...mask, originalName: storable(`${upload.name}.msk`).slice(0, longestName), uploadedBy: access.personId });
+    for (const { name, ...part } of understood.companions.parts!) await StoredFile.query(trx).insert({ estateId: access.estateId, ...part, originalName: storable(name), uploadedBy: access.personId });
     const record = await FileImport.query(trx).insert(
       storable({ estateId: access.estateId, fileId: file.id, fileName: shownFileName(upload.name), format: described.format, state: 'asks' as const, understood, answers: {}, warnings: described.notes, problem: null, createdBy: access.personId }),
     );
-    await writeAudit(trx, access, { action: 'import.receive', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { sha256, bytes, format: described.format } });
+    await writeAudit(trx, access, { action: 'import.receive', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { sha256, bytes, format: described.format, ...(kept.length === 0 ? {} : { parts: understood.companions.parts }) } });
     return record;
   });
 }

@@ -41,6 +41,7 @@ export async function viewsOf(access: Access, records: FileImport[]): Promise<Im
       fileName: record.fileName,
       bytes: file?.bytes ?? null,
       sha256: file?.sha256 ?? null,
+      parts: record.understood.companions.parts ?? [],
       format: record.format,
       // A placing that somebody stopped leaves the answers open to change.
       state: record.state === 'ready' && jobs.get(record.id)?.state === 'cancelled' ? 'asks' : record.state,

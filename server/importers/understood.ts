@@ -18,6 +18,8 @@ export interface QuestionChoice {
   sampleLonLat?: readonly LonLat[];
   /** From the estate; null when the estate's place is not known. */
   distanceKm?: number | null;
+  /** Metres by which its datum may put the file aside. */
+  uncertaintyM?: number;
 }
 
 /** The file is used, but this was noticed. */

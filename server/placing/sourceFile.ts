@@ -70,7 +70,7 @@ export function readerQuestionsOf(question: ReaderQuestion, answers: ImportAnswe
       code,
       kind: 'choice',
       reason: question.text,
-      choices: question.choices.map((choice) => ({ value: typedValue(code, choice.value), label: choice.label, outlineLonLat: pairs(choice.outlineLonLat ?? null), ...(choice.sampleLonLat ? { sampleLonLat: pairs(choice.sampleLonLat)! } : {}), distanceKm: choice.distanceKm ?? null })),
+      choices: question.choices.map((choice) => ({ value: typedValue(code, choice.value), label: choice.label, outlineLonLat: pairs(choice.outlineLonLat ?? null), ...(choice.sampleLonLat ? { sampleLonLat: pairs(choice.sampleLonLat)! } : {}), distanceKm: choice.distanceKm ?? null, ...(choice.uncertaintyM ? { uncertaintyM: choice.uncertaintyM } : {}) })),
       suggestion: null,
       answer: answer ?? null,
       answered: answer !== undefined && !checkedByReader.has(code),

@@ -9,6 +9,7 @@ import { otherGrids } from './crsRestOfWorld.ts';
 import type { GridRow } from './crsRow.ts';
 import { statePlaneZones } from './crsStatePlane.ts';
 import type { LonLat } from './coordinates.ts';
+import { datumShiftAccuracyM } from './datumAccuracy.ts';
 import { utmZone } from './utm.ts';
 
 export interface CrsDefinition {
@@ -48,15 +49,13 @@ export function crsDefinition(epsg: number): CrsDefinition | null {
   return { epsg, name, proj4: `${text}${units} +no_defs`, unitM, datumUncertaintyM: datumUncertaintyM(name, text) };
 }
 
-/** Datums spread over many countries, whose mean parameters fit some of them badly: half widths of the mean solutions (NIMA TR8350.2, from memory), rounded up; PSAD56 as PROJ differs in Chile. */
-const wideDatums: readonly (readonly [RegExp, number])[] = [[/PSAD56/, 50], [/SAD69/, 15], [/ED50/, 10], [/^Cape/, 10]];
-
 /**
- * Old datums come over by a few parameters (about 5 m, more where one datum serves half a continent); NAD 83 and GDA94 are taken as WGS 84, from which their plates have
- * moved by 1 to 2 m; other modern datums agree within a metre. Common knowledge of the trade, not a computed error.
+ * NAD 83 and GDA94 are taken as WGS 84, from which their plates have moved by 1 to 2 m; other modern datums agree within a
+ * metre (common knowledge of the trade). Old ones as their parameters fit; every shift among our definitions is in that list.
  */
 function datumUncertaintyM(name: string, text: string): number {
-  if (/\+towgs84=(?!0,0,0)/.test(text)) return wideDatums.find(([datum]) => datum.test(name))?.[1] ?? 5;
+  const shift = datumShiftAccuracyM(text);
+  if (shift !== 0) return shift!;
   if (/NAD83|GDA94/.test(name)) return 2;
   return text.includes('WGS84') ? 0 : 1;
 }

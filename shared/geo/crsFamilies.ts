@@ -1,6 +1,6 @@
 /**
  * Reference systems that follow a rule: UTM zones of the datums in use, and latitude/longitude of these datums.
- * Datum shifts are the ones commonly used without a correction grid; they place a file within about 1 to 5 m.
+ * Datum shifts are the ones commonly used without a correction grid; how well they fit: datumAccuracy.ts.
  * Codes and parameters: EPSG Geodetic Parameter Dataset (IOGP).
  */
 import type { GridRow } from './crsRow.ts';

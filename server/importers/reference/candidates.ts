@@ -1,4 +1,4 @@
-import { candidateCodes } from '../../../shared/geo/crsDefinitions.ts';
+import { candidateCodes, crsDefinition } from '../../../shared/geo/crsDefinitions.ts';
 import type { LonLat, RingLonLat } from '../../../shared/geo/coordinates.ts';
 import type { ImportQuestion, QuestionChoice } from '../understood.ts';
 import { distanceKm } from './distance.ts';
@@ -24,7 +24,7 @@ export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonL
 }
 
 function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
-  const found: { value: string; label: string; outlineLonLat: RingLonLat; distanceKm: number; centre: LonLat }[] = [];
+  const found: { value: string; label: string; outlineLonLat: RingLonLat; distanceKm: number; uncertaintyM: number; centre: LonLat }[] = [];
   const degrees = looksLikeDegrees(outline);
   for (const epsg of new Set(candidateCodes(estate))) {
     // Numbers the size of degrees would lie at the origin of a national grid, which may be near by chance.
@@ -32,9 +32,11 @@ function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {
     if (place === null) continue;
     const away = distanceKm(place.centre, estate);
     if (away > FARTHEST_KM || found.some((other) => distanceKm(other.centre, place.centre) < SAME_PLACE_KM)) continue;
-    found.push({ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: away, centre: place.centre });
+    found.push({ value: String(epsg), label: `${place.name} (EPSG:${epsg})`, outlineLonLat: place.outline, distanceKm: away, uncertaintyM: crsDefinition(epsg)?.datumUncertaintyM ?? 0, centre: place.centre });
   }
-  return found.sort((a, b) => Math.round(a.distanceKm / TIE_KM) - Math.round(b.distanceKm / TIE_KM)).slice(0, SHOWN).map(({ value, label, outlineLonLat, distanceKm: km }) => ({ value, label, outlineLonLat, distanceKm: Math.round(km * 10) / 10 }));
+  const leastKm = Math.min(...found.map((each) => each.distanceKm));
+  const rank = ({ distanceKm: km }: { distanceKm: number }) => Math.floor((km - leastKm) / TIE_KM);
+  return found.sort((a, b) => rank(a) - rank(b)).slice(0, SHOWN).map(({ value, label, outlineLonLat, distanceKm: km, uncertaintyM }) => ({ value, label, outlineLonLat, distanceKm: Math.round(km * 10) / 10, uncertaintyM }));
 }
 
 /** Without a place to compare with, only degrees can be recognised, by their size. */

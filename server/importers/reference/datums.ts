@@ -1,6 +1,6 @@
 /**
  * What to do with a datum that a file names but does not describe: old ones are brought to WGS 84 by the parameters in
- * common use (EPSG Geodetic Parameter Dataset; good to about 5 m), modern ones are taken as WGS 84.
+ * common use (EPSG Geodetic Parameter Dataset; how well they fit: shared/geo/datumAccuracy.ts), modern ones are taken as WGS 84.
  */
 
 /** Text for proj4 of a datum by its name in any of the usual spellings; null when the name is not known. */

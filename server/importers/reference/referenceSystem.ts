@@ -1,5 +1,6 @@
 import proj4 from 'proj4';
 import { crsDefinition } from '../../../shared/geo/crsDefinitions.ts';
+import { datumShiftAccuracyM } from '../../../shared/geo/datumAccuracy.ts';
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
 import { utmDefinition } from '../../../shared/geo/utm.ts';
 import type { Reprojection } from '../../../shared/analysis/resampleFrame.ts';
@@ -77,11 +78,19 @@ export function reprojectionTo(reference: ReferenceSystem, gridEpsg: number, nea
   return isSame ? undefined : toGrid;
 }
 
+/** Metres by which positions may lie aside after our conversion; null where the file brings parameters of its own. */
+export function datumUncertaintyM({ epsg, definition }: Pick<ReferenceSystem, 'epsg' | 'definition'>): number | null {
+  const shipped = epsg === null ? null : crsDefinition(epsg);
+  return shipped === null ? datumShiftAccuracyM(definition) : shipped.datumUncertaintyM;
+}
+
 /** What to say about the accuracy of a system's datum; null when there is nothing to say. */
 export function datumWarning(reference: ReferenceSystem): ImportWarning | null {
-  const uncertaintyM = reference.epsg === null ? (reference.definition.includes('+towgs84') ? 5 : 0) : (crsDefinition(reference.epsg)?.datumUncertaintyM ?? 0);
+  const uncertaintyM = datumUncertaintyM(reference);
+  const { name } = reference;
+  if (uncertaintyM === null) return { code: 'datum-own', text: `${name} is converted to today's satellite positions by numbers that the file itself brings; how well they fit is not known here. Compare the layer with the block outline on the map.`, params: { name } };
   if (uncertaintyM < 2) return null;
-  return { code: 'datum', text: `${reference.name} is converted to today's satellite positions with an accuracy of about ${uncertaintyM} m. Compare the layer with the block outline on the map.`, params: { name: reference.name, uncertaintyM } };
+  return { code: 'datum', text: `${name} is converted to today's satellite positions; the layer may lie up to ${uncertaintyM} m aside. Compare it with the block outline on the map.`, params: { name, uncertaintyM } };
 }
 
 /** The system that a person answered with. Throws `unknown-reference`. */

@@ -96,7 +96,8 @@ function describe(wkt: ParsedWkt, text: string): { definition: string; assumedDa
     : degrees(wkt.lat0, 'lat_0') + degrees(wkt.lat1, 'lat_1') + degrees(wkt.lat2, 'lat_2') + degrees(wkt.lat_ts, 'lat_ts') + degrees(projection === 'omerc' ? undefined : (wkt.longc ?? wkt.long0), 'lon_0') + degrees(projection === 'omerc' ? wkt.longc : undefined, 'lonc') + degrees(wkt.alpha, 'alpha') + degrees(wkt.rectified_grid_angle, 'gamma');
   const unit = wkt.to_meter === undefined || wkt.to_meter === 1 ? ' +units=m' : ` +to_meter=${wkt.to_meter}`;
   const sphere = /auxiliary_?sphere|pseudo.?mercator/i.test(text) ? ' +a=6378137 +b=6378137' : ` ${datum.text}`;
-  const turned = wkt.axis === 'wsu' || wkt.axis === 'swu' ? ' +axis=wsu' : '';
+  // South Africa counts from north and east; the dialect of .prj files says it by the projection alone.
+  const turned = wkt.axis === 'wsu' || wkt.axis === 'swu' || /south_?orient/i.test(wkt.projName ?? '') ? ' +axis=wsu' : '';
   const placed = fixedParameters[projection] ?? parameters + plain(wkt.k0, 'k');
   return { definition: `+proj=${isSwiss ? 'somerc' : projection}${placed}${plain(wkt.x0, 'x_0')}${plain(wkt.y0, 'y_0')}${sphere}${primeMeridian(wkt, text)}${unit}${turned} +no_defs`, assumedDatum: datum.assumed };
 }

@@ -61,6 +61,11 @@ export function oechsleToGravity(oechsle: number): number {
   return 1 + oechsle / 1000;
 }
 
+/** Degrees of the Klosterneuburg must scale to °Oechsle: k (4.54 + 0.022 k), the usual approximation, from memory; the steps of Austrian wine law agree to a degree (17 → 84, 19 → 94, 21 → 105, 25 → 127, 30 → 156). */
+export function klosterneuburgToOechsle(kmw: number): number {
+  return kmw * (4.54 + 0.022 * kmw);
+}
+
 /** g of juice a litre. */
 export function juiceDensityGPerL(brix: number): number {
   return WATER_G_PER_L * brixToGravity(brix);

@@ -1,6 +1,6 @@
 import { convertAcidity } from '../cellar/acidity.ts';
 import { brixOfSugar } from '../cellar/mustSugar.ts';
-import { baumeToGravity, gravityToBrix, oechsleToGravity, solidsGPerL } from '../cellar/must.ts';
+import { baumeToGravity, gravityToBrix, klosterneuburgToOechsle, oechsleToGravity, solidsGPerL } from '../cellar/must.ts';
 
 /**
  * Units in which laboratories write what an estate keeps in one unit: °Brix for sugar, g/L as tartaric acid for titratable
@@ -21,6 +21,7 @@ export const labUnits: readonly LabUnit[] = [
   { id: 'brix', measure: 'brix', shown: '°Brix', convert: same },
   { id: 'baume', measure: 'brix', shown: '°Bé', convert: (value) => brixOfGravity(baumeToGravity(value)) },
   { id: 'oechsle', measure: 'brix', shown: '°Oe', convert: (value) => brixOfGravity(oechsleToGravity(value)) },
+  { id: 'kmw', measure: 'brix', shown: '°KMW', convert: (value) => brixOfGravity(oechsleToGravity(klosterneuburgToOechsle(value))) },
   // Written as 1.092, or as 1092 kg a cubic metre without the mark.
   { id: 'gravity', measure: 'brix', shown: 'SG', convert: (value) => brixOfGravity(value > 900 ? value / 1000 : value) },
   { id: 'solidsGPerL', measure: 'brix', shown: 'g/L', convert: brixOfSolids },

@@ -5,7 +5,7 @@ import { ALCOHOL_SETTINGS, potentialAlcohol } from '../../shared/cellar/alcohol.
 import { reviewForecasts } from '../../shared/cellar/forecastReview.ts';
 import { lotLikeness } from '../../shared/cellar/lotLikeness.ts';
 import { lotPh, lotTonnes, lotValue, type LotPart } from '../../shared/cellar/lots.ts';
-import { airGravityToBrix, baumeToGravity, brixToGravity, gravityToBaume, gravityToBrix, gravityToOechsle, juiceDensityGPerL, oechsleToGravity, solidsGPerL } from '../../shared/cellar/must.ts';
+import { airGravityToBrix, baumeToGravity, brixToGravity, gravityToBaume, gravityToBrix, gravityToOechsle, juiceDensityGPerL, oechsleToGravity, solidsGPerL, klosterneuburgToOechsle } from '../../shared/cellar/must.ts';
 import { fitTank, hintFor, litreHints, litresFrom, tankVolumeNeeded } from '../../shared/cellar/tankFit.ts';
 import { correctRefractometer } from '../../shared/cellar/temperature.ts';
 import { convertUnit, kgPerHlToLitresPerT } from '../../shared/cellar/unitFactors.ts';
@@ -218,6 +218,13 @@ describe('acidity', () => {
     expectRelative(convertAcidity(6, 'tartaricGPerL', 'sulphuricGPerL'), 3.920886, 1e-6);
     expectRelative(convertAcidity(6, 'tartaricGPerL', 'meqPerL'), 79.953627, 1e-7);
     expectRelative(convertAcidity(10, 'mmolPerL', 'tartaricGPerL'), 1.50087, 1e-12);
+  });
+});
+
+describe('degrees of Klosterneuburg', () => {
+  // The steps of Austrian wine law, which names both degrees; from memory.
+  it.each([[17, 84], [19, 94], [21, 105], [25, 127], [30, 156]])('%d are %d °Oechsle', (kmw, oechsle) => {
+    expect(Math.abs(klosterneuburgToOechsle(kmw) - oechsle)).toBeLessThan(1);
   });
 });
 

@@ -134,7 +134,8 @@ function withUnit({ title, cells, measures }: Column, role: { measure: string; u
   const fits = (unit: string) => figures.length === 0 || figures.filter((value) => isPlausible(measure, unit, value)).length >= mostly * figures.length;
   const told = role.unit ?? unitOfWord(title, measure.code);
   if (told !== null && (fits(told) || !units.some(({ id }) => fits(id)))) return { measure: measure.code, unit: told };
-  const possible = units.filter(({ id }) => fits(id));
+  // Degrees of Klosterneuburg look like degrees Brix, and only German titles mean them without saying so.
+  const possible = units.filter(({ id }) => fits(id) && (id !== 'kmw' || told === 'kmw' || /zucker|most/i.test(title)));
   // Figures near 1.09 can be nothing but a gravity. Always asked: acidity, whose scales overlap, and grams a litre, which
   // may be all that is dissolved or the sugar alone.
   if (told === null && possible.length === 1 && measure.code !== 'ta' && !possible[0]!.id.endsWith('GPerL')) {

@@ -4,7 +4,7 @@ import type { KnownLabel, RawCell } from './labFile.ts';
 import type { Asking } from './questions.ts';
 
 /** Rows of a laboratory's own: means, blanks, controls, standards, sums. */
-const notASample = /^(mean|average|avg|moyenne|media|promedio|mittel|sd|ecart|std|stdev|blank|blanc|blanco|bianco|branco|control|controle|qc|standard|etalon|patron|total|sum|n|min|max|cv)\b/;
+const notASample = /^ø|^(mean|average|avg|moyenne|media|promedio|mittel|sd|ecart|std|stdev|blank|blanc|blanco|bianco|branco|control|controle|qc|standard|etalon|patron|total|sum|n|min|max|cv)\b/;
 const mostRows = 30;
 
 /** A word beside the label that says that the line sums up others, so that a mean is no further reading of the bag. */

@@ -31,11 +31,16 @@ const rows: readonly TitleRow[] = [
   { pattern: /alcoh|alcool|\btav|\bavp\b|% ?vol|grado prob|degre prob|gradazione/, role: () => ignored },
   { pattern: /^(n(o|r|°)?\.? ?)?(rep|repl|replicate|repetition|repeticion|ripetizione|repeticao|replica|wdh|wiederholung)(\.|s| n(o|r|°)?\.?)?$/, role: () => ignored },
   { pattern: /comment|remark|observ|note|nota|osserv|obs\b/, role: () => ignored },
+  // Parts of the nitrogen that yeast can use: neither is the sum, and ammonium is often told as NH4 and not as nitrogen.
+  { pattern: /^(?!.*(assimil|asimil|\byan\b|\bnfa\b|\bapa\b|\bnaf\b|total|sum)).*(ammoni|amoni|\bnh ?[34]|\bpan\b|\bfan\b|\bnopa\b|amino|\bamine\b|aminico|amminic)/, role: () => ignored },
+  // Grams a kilogram is no unit of ours, and near enough to grams a litre to be taken for it.
+  { pattern: /(sugar|sucre|azucar|zuccher|acucar|zucker|solid|solub).*g ?\/ ?kg/, role: () => ignored },
   { pattern: /brix|°bx|\bbx\b/, role: () => of('brix', 'brix') },
   { pattern: /baume|^be$|°be|\bbe\b/, role: () => of('brix', 'baume') },
+  { pattern: /\bkmw\b|klosterneub|\bbabo\b/, role: () => of('brix', 'kmw') },
   { pattern: /oechsle|ochsle|°oe|\boe\b/, role: () => of('brix', 'oechsle') },
   { pattern: /\bsg\b|s\.g\.|\bd20|densi|dichte|masse vol|massa vol|peso espec|peso spec|specific grav|gravity/, role: () => of('brix', 'gravity') },
-  { pattern: /sugar|sucre|azucar|zuccher|acucar|zucker|\bsst\b|\btss\b|glucos|fructos|soluble sol|solidos|solidi sol/, role: () => of('brix', null) },
+  { pattern: /sugar|sucre|azucar|zuccher|acucar|zucker|mostgew|\bsst\b|\btss\b|glucos|fructos|soluble sol|solidos|solidi sol/, role: () => of('brix', null) },
   { pattern: /mali[ckqe]|malico|apfels/, role: (title) => of('malic', /mg ?\/? ?l/.test(title) ? 'malicMgPerL' : 'malicGPerL') },
   { pattern: /\byan\b|assimil|asimil|nitrogen|azote|azoto|nitrogeno|\bnfa\b|\bapa\b|\bnaf\b/, role: (title) => of('yan', /(^|[^m])g ?\/ ?l/.test(title) ? 'gNPerL' : 'mgNPerL') },
   { pattern: /\bph\b/, role: () => of('ph', null) },
@@ -57,7 +62,7 @@ const rows: readonly TitleRow[] = [
   { pattern: /temp|^t ?°|°[cf]\b|fahrenheit/, role: () => ({ kind: 'temperature' }) },
   { pattern: /label|etiq|etich|bag\b|sample|echant|muestra|campion|amostra|probe|code|codigo|codice|\bref|\bid\b|\bno\b|\bn°/, role: () => ({ kind: 'code' }) },
   { pattern: /^(unit|unite|unidad|unita|unidade|einheit)s?$/, role: () => ({ kind: 'unit' }) },
-  { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert)s?e?$/, role: () => ({ kind: 'value' }) },
+  { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert|ergebnis|messwert)s?e?$/, role: () => ({ kind: 'value' }) },
 ];
 
 /** Example: "Acidité totale (g/L H2SO4)" → titratable acidity as sulphuric; "Acidez total" → titratable acidity, scale not told. */

@@ -3,6 +3,7 @@ import type { GridFrame } from './grid.ts';
 import type { PixelWindow } from './resampleFrame.ts';
 import type { PlaneMap } from './resampleMap.ts';
 import type { SumTable, TilePart } from './resampleSums.ts';
+import { addPairs } from './resampleSumsPairs.ts';
 import type { PixelTile } from './resampleTile.ts';
 
 /** Column of cells for each pixel column of the window, and row of cells for each pixel row; -1 outside the grid. */
@@ -31,7 +32,9 @@ export function centreTables(grid: GridFrame, map: PlaneMap, window: PixelWindow
 }
 
 /** Raster and grid with parallel sides: sums run along a pixel row until the cell changes. */
-export function addByCentreTable(sums: SumTable, part: TilePart, { window, colOf, runEnd, rowOf }: CentreTables): void {
+export function addByCentreTable(sums: SumTable, part: TilePart, tables: CentreTables): void {
+  if (addPairs(sums, part, tables)) return;
+  const { window, colOf, runEnd, rowOf } = tables;
   const { tile, fromRow, toRow } = part;
   for (let row = fromRow; row < toRow; row++) {
     const cellRow = rowOf[row - window.firstRow]!;

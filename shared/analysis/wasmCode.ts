@@ -21,6 +21,8 @@ export const float = (value: number): Code => [0x44, [...new Uint8Array(Float64A
 const binary = (opcode: number) => (left: Code, right: Code): Code => [left, right, opcode];
 
 export const equal = binary(0x46);
+export const unequal = binary(0x47);
+export const both = binary(0x71);
 export const lessInt = binary(0x48);
 export const atLeastInt = binary(0x4e);
 export const addInt = binary(0x6a);
@@ -32,12 +34,17 @@ export const add = binary(0xa0);
 export const minus = binary(0xa1);
 export const times = binary(0xa2);
 export const over = binary(0xa3);
+/** Of 32 bits without sign. */
+export const toFloat = (value: Code): Code => [value, 0xb8];
 export const squareRoot = (value: Code): Code => [value, 0x9f];
 
 export const loadFloat = (address: Code): Code => [address, 0x2b, 3, 0];
 export const storeFloat = (address: Code, value: Code): Code => [address, value, 0x39, 3, 0];
 /** Rounded to 32 bits, as by a Float32Array. */
 export const storeSingle = (address: Code, value: Code): Code => [address, value, 0xb6, 0x38, 2, 0];
+export const loadInt = (address: Code): Code => [address, 0x28, 2, 0];
+/** Sixteen bits without sign. */
+export const loadShort = (address: Code): Code => [address, 0x2f, 1, 0];
 export const loadByte = (address: Code): Code => [address, 0x2d, 0, 0];
 export const storeByte = (address: Code, value: Code): Code => [address, value, 0x3a, 0, 0];
 export const storeInt = (address: Code, value: Code): Code => [address, value, 0x36, 2, 0];

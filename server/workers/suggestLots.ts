@@ -1,6 +1,6 @@
 import highsLoader from 'highs';
-import { lotChoices, type ChoiceRules, type ChoiceTank, type ChoiceZone, type LotChoice } from '../../shared/cellar/lotChoices.ts';
-import { lotProgramme } from '../../shared/cellar/lotProgramme.ts';
+import { handOutTanks, lotChoices, type ChoiceRules, type ChoiceTank, type ChoiceZone, type LotChoice } from '../../shared/cellar/lotChoices.ts';
+import { greedyChoice, lotProgramme, programmeCost } from '../../shared/cellar/lotProgramme.ts';
 
 export interface SuggestInput {
   zones: ChoiceZone[];
@@ -23,6 +23,8 @@ export async function suggestLots({ zones, tanks, rules, limitSeconds }: Suggest
   const highs = await highsLoader();
   const answer = highs.solve(lotProgramme(zones, tanks, choices), { time_limit: limitSeconds, output_flag: false, mip_rel_gap: 0 });
   const columns = answer.Columns as Record<string, { Primal?: number }>;
-  const lots = choices.filter((_, k) => (columns[`y${k}`]?.Primal ?? 0) > 0.5);
-  return { lots, provedBest: complete && answer.Status === 'Optimal', groupings: choices.length };
+  const solved = choices.filter((_, k) => (columns[`y${k}`]?.Primal ?? 0) > 0.5);
+  // Cut off by its time the solver may hold worse lots than the plainest way finds.
+  const [lots] = [solved, greedyChoice(tanks, choices)].sort((a, b) => programmeCost(zones, a) - programmeCost(zones, b));
+  return { lots: handOutTanks(lots!, tanks), provedBest: complete && answer.Status === 'Optimal', groupings: choices.length };
 }

@@ -5,8 +5,8 @@ import { fitTank, litresFrom, type Tank } from './tankFit.ts';
 /**
  * Every grouping of zones that could be a lot, each with a tank that it fits and what it costs: zones → choices. The
  * best set of them is a set-partitioning programme (Balas & Padberg 1976, SIAM Review 18:710): a zone in one lot at
- * most, a tank for one lot at most. Cost: groupings grow fast with zones, so tanks and days cut them off early and a
- * limit is kept; whether it was met is told.
+ * most, a tank for one lot at most. Groupings grow fast with zones: tanks and days cut them off early, tanks that are
+ * alike count as one, and where there are still too many only groupings near each zone are taken, which is told.
  */
 export const COMPARED = ['brix', 'ph', 'ta'] as const;
 export type Compared = (typeof COMPARED)[number];
@@ -65,37 +65,88 @@ const DOUBTFUL_FIT_COST = 2;
 const LOT_COST = 0.1;
 const MOST_VISITS = 150_000;
 const MOST_CHOICES = 4000;
+/** Groupings kept at each size around a zone, and tanks tried for each; the first pair that stays under the limit. */
+const NEAR = [[4, 3], [3, 2], [2, 2], [2, 1], [1, 1]] as const;
 
+/** `tank` of a choice is the first of its kind; `handOutTanks` gives each lot one of its own. */
 export function lotChoices(zones: readonly ChoiceZone[], tanks: readonly ChoiceTank[], rules: ChoiceRules): LotChoices {
   const perLot = (LOT_COST * zones.reduce((sum, { tonnes }) => sum + tonnes.value, 0)) / Math.max(1, zones.length);
+  const kinds = [...new Set(tankKinds(tanks))];
+  const mostLitres = Math.max(0, ...tanks.map(({ volumeL, fillShare }) => volumeL * fillShare));
+  const of = (group: readonly number[]) => group.map((index) => zones[index]!);
+  /** Larger groups only grow; what is too big for every tank or day stays so. */
+  const mayGrow = (whole: readonly ChoiceZone[]) => {
+    const tonnes = whole.reduce((sum, zone) => sum + zone.tonnes.value, 0);
+    return tonnes * litresOf(whole, rules).value <= mostLitres && tonnes <= dayLimit(whole, rules);
+  };
+  const choicesOf = (group: readonly number[]): LotChoice[] => {
+    const whole = of(group);
+    const unlike = unlikeness(whole);
+    if (unlike === null || missedTarget(whole, rules) !== null) return [];
+    const tonnes = sumTonnes(whole);
+    const litres = litresFrom(tonnes, litresOf(whole, rules));
+    return kinds.flatMap((tank) => {
+      const { chanceOfFit, chanceBelowMinimum } = fitTank(litres, tanks[tank]!);
+      const cost = unlike + perLot + tonnes.value * (BELOW_MINIMUM_COST * chanceBelowMinimum + DOUBTFUL_FIT_COST * (1 - chanceOfFit));
+      return chanceOfFit < rules.leastChance ? [] : [{ zones: group, tank, cost, tonnes: tonnes.value, chanceOfFit, chanceBelowMinimum }];
+    });
+  };
+
   const found: LotChoice[] = [];
   let visits = 0;
-  const mostLitres = Math.max(0, ...tanks.map(({ volumeL, fillShare }) => volumeL * fillShare));
-
-  const grow = (chosen: number[], next: number): void => {
-    for (let zone = next; zone < zones.length && visits < MOST_VISITS; zone++) {
+  const grow = (chosen: readonly number[], next: number): void => {
+    for (let zone = next; zone < zones.length && visits < MOST_VISITS && found.length <= MOST_CHOICES; zone++) {
       if (chosen.length > 0 && !mayJoin(zones[chosen[0]!]!, zones[zone]!, rules)) continue;
       visits += 1;
       const group = [...chosen, zone];
-      const whole = group.map((index) => zones[index]!);
-      const tonnes = sumTonnes(whole);
-      // Larger groups only grow; what is too big for every tank or day stays so.
-      if (tonnes.value * litresOf(whole, rules).value > mostLitres || tonnes.value > dayLimit(whole, rules)) continue;
-      const unlike = unlikeness(whole);
-      if (unlike !== null && missedTarget(whole, rules) === null) {
-        tanks.forEach((tank, index) => {
-          const fit = fitTank(litresFrom(tonnes, litresOf(whole, rules)), tank);
-          if (fit.chanceOfFit < rules.leastChance) return;
-          const cost = unlike + perLot + tonnes.value * (BELOW_MINIMUM_COST * fit.chanceBelowMinimum + DOUBTFUL_FIT_COST * (1 - fit.chanceOfFit));
-          found.push({ zones: group, tank: index, cost, tonnes: tonnes.value, chanceOfFit: fit.chanceOfFit, chanceBelowMinimum: fit.chanceBelowMinimum });
-        });
-      }
+      if (!mayGrow(of(group))) continue;
+      found.push(...choicesOf(group));
       grow(group, zone + 1);
     }
   };
   grow([], 0);
-  const complete = visits < MOST_VISITS && found.length <= MOST_CHOICES;
-  return { choices: found.length <= MOST_CHOICES ? found : thin(found), complete };
+  if (visits < MOST_VISITS && found.length <= MOST_CHOICES) return { choices: found, complete: true };
+  for (const [each, tanksEach] of NEAR) {
+    const near = nearGroups(zones, { each, joins: (a, b) => mayJoin(a, b, rules), mayGrow }).flatMap((group) => choicesOf(group).sort((a, b) => a.cost - b.cost).slice(0, tanksEach));
+    if (near.length <= MOST_CHOICES || each === 1) return { choices: near.slice(0, MOST_CHOICES), complete: false };
+  }
+  return { choices: [], complete: false };
+}
+
+/** Around each zone the groupings of every size that are most alike, grown a zone at a time from the best of the size below. */
+function nearGroups(zones: readonly ChoiceZone[], how: { readonly each: number; readonly joins: (a: ChoiceZone, b: ChoiceZone) => boolean; readonly mayGrow: (whole: readonly ChoiceZone[]) => boolean }): number[][] {
+  const all = new Map<string, number[]>();
+  zones.forEach((seed, first) => {
+    const around = [...zones.keys()].filter((index) => index !== first && how.joins(seed, zones[index]!));
+    let best = how.mayGrow([seed]) ? [[first]] : [];
+    while (best.length > 0) {
+      for (const group of best) all.set(group.join(), group);
+      const larger = new Map<string, { group: number[]; unlike: number }>();
+      for (const group of best) {
+        for (const index of around) {
+          if (group.includes(index) || !group.every((one) => how.joins(zones[one]!, zones[index]!))) continue;
+          const next = [...group, index].sort((a, b) => a - b);
+          const whole = next.map((one) => zones[one]!);
+          const unlike = how.mayGrow(whole) ? unlikeness(whole) : null;
+          if (unlike !== null) larger.set(next.join(), { group: next, unlike });
+        }
+      }
+      best = [...larger.values()].sort((a, b) => a.unlike - b.unlike).slice(0, how.each).map(({ group }) => group);
+    }
+  });
+  return [...all.values()].sort((a, b) => a.length - b.length);
+}
+
+/** For each tank the first one that is like it: same volume, fill and minimum. */
+export function tankKinds(tanks: readonly ChoiceTank[]): number[] {
+  return tanks.map((tank) => tanks.findIndex((other) => other.volumeL === tank.volumeL && other.fillShare === tank.fillShare && other.minimumL === tank.minimumL));
+}
+
+/** Each lot with a tank of its own among those of its kind. */
+export function handOutTanks(lots: readonly LotChoice[], tanks: readonly ChoiceTank[]): LotChoice[] {
+  const kinds = tankKinds(tanks);
+  const free = new Map(kinds.map((kind) => [kind, kinds.flatMap((one, index) => (one === kind ? [index] : []))]));
+  return lots.map((lot) => ({ ...lot, tank: free.get(lot.tank)!.shift()! }));
 }
 
 /** Red must needs no press on the day it comes in; white and rosé do. */
@@ -104,12 +155,6 @@ export const isPressed = ({ wineType }: Pick<ChoiceZone, 'wineType'>): boolean =
 /** Tonnes of these zones that one day takes in: what can be picked, and for what is pressed at once what the press takes. */
 export function dayLimit(zones: readonly ChoiceZone[], { dayTonnes, pressTonnes }: Pick<ChoiceRules, 'dayTonnes' | 'pressTonnes'>): number {
   return Math.min(dayTonnes ?? Infinity, zones.some(isPressed) ? (pressTonnes ?? Infinity) : Infinity);
-}
-
-/** Single zones and the cheapest groupings a tonne. */
-function thin(found: readonly LotChoice[]): LotChoice[] {
-  const rank = ({ zones, cost, tonnes }: LotChoice) => (zones.length === 1 ? -Infinity : cost / tonnes);
-  return [...found].sort((a, b) => rank(a) - rank(b)).slice(0, MOST_CHOICES);
 }
 
 export function mayJoin(a: ChoiceZone, b: ChoiceZone, { together }: Pick<ChoiceRules, 'together'>): boolean {

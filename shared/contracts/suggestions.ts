@@ -40,6 +40,8 @@ export const suggestionView = z.object({
   provedBest: z.boolean(),
   /** Groupings that fit a tank, a day and the targets. */
   groupings: z.number().int(),
+  /** False when nobody had entered what a day takes in, so that the days given rest on restrictions alone. */
+  roomKnown: z.boolean().optional(),
   lots: z.array(z.object({ lotName: z.string(), tank: z.string(), chanceOfFit: z.number(), pickOn: z.string().nullable(), zones: z.array(z.object({ zoneId: id, zone: z.string(), reason: placedReason })) })),
   leftOut: z.array(z.object({ zoneId: id, zone: z.string(), reason: leftOutReason })),
 });

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { suggestLots } from '../../server/workers/suggestLots.ts';
 import { seededRandom, type Random } from '../../shared/analysis/random.ts';
 import { lotChoices, type ChoiceRules, type ChoiceTank, type ChoiceZone, type LotChoice } from '../../shared/cellar/lotChoices.ts';
-import { programmeCost } from '../../shared/cellar/lotProgramme.ts';
+import { greedyChoice, programmeCost } from '../../shared/cellar/lotProgramme.ts';
 import { whyLeftOut, whyPlaced } from '../../shared/cellar/lotReasons.ts';
 import { pickDays } from '../../shared/cellar/pickDays.ts';
 
@@ -118,6 +118,40 @@ describe('suggested lots', () => {
     const placed = answer.lots.flatMap((lot) => lot.zones);
     expect(new Set(placed).size).toBe(placed.length);
     expect(new Set(answer.lots.map((lot) => lot.tank)).size).toBe(answer.lots.length);
+  });
+  it('place nearly all of many zones, though their groupings are too many to look at all', async () => {
+    const random = seededRandom(8);
+    const varieties = ['Carignan', 'Cinsault', 'Syrah', 'Merlot'];
+    const zones = Array.from({ length: 40 }, (_, index) => zone(String(index), { tonnes: 11 + 4 * random(), brix: 22 + 3 * random(), variety: varieties[index % 4]! }));
+    const tanks = Array.from({ length: 20 }, (_, index) => tank(String(index), [20_000, 32_000, 48_000, 80_000, 120_000][index % 5]!));
+    const answer = await suggestLots({ zones, tanks, rules: rules({ together: [varieties] }), limitSeconds: 3 });
+    const placed = answer.lots.flatMap((lot) => lot.zones);
+    expect(answer.provedBest).toBe(false);
+    expect(new Set(placed).size).toBe(placed.length);
+    expect(placed.length).toBeGreaterThan(36);
+    expect(new Set(answer.lots.map((lot) => lot.tank)).size).toBe(answer.lots.length);
+    const usable = (lot: LotChoice) => tanks[lot.tank]!.volumeL * 0.8;
+    expect(answer.lots.every((lot) => lot.tonnes * 800 <= usable(lot))).toBe(true);
+  });
+
+  it('are never worse than taking what places most, again and again', () => {
+    const random = seededRandom(9);
+    for (let round = 0; round < 20; round++) {
+      const { zones, tanks } = simulated(random);
+      const { choices } = lotChoices(zones, tanks, rules());
+      const taken = greedyChoice(tanks, choices);
+      const placed = taken.flatMap((lot) => lot.zones);
+      expect(new Set(placed).size).toBe(placed.length);
+      expect(programmeCost(zones, taken)).toBeGreaterThanOrEqual(cheapestByHand(zones, choices) - 1e-9);
+      expect(programmeCost(zones, taken)).toBeLessThanOrEqual(programmeCost(zones, []));
+    }
+  });
+
+  it('use tanks that are alike as often as there are of them', async () => {
+    const zones = ['a', 'b', 'c'].map((id, index) => zone(id, { tonnes: 5, brix: 21 + 2 * index }));
+    const answer = await suggestLots({ zones, tanks: [tank('T1', 6500), tank('T2', 6500)], rules: rules(), limitSeconds: 5 });
+    expect(answer.lots.map((lot) => lot.tank).sort()).toEqual([0, 1]);
+    expect(answer.provedBest).toBe(true);
   });
 });
 

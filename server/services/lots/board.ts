@@ -23,7 +23,7 @@ export async function lotsBoard(access: Access, options: { scenarioId: string | 
   const scenario = await findScenario(access, { ...options, today: options.knownOn ?? options.today });
   const scenarios = await Scenario.query().where({ estateId: access.estateId, seasonId: scenario.seasonId }).orderBy('createdAt');
   const then = options.knownOn ? await thenOf(access.estateId, scenario.id, await endOfEstateDay(access.estateId, options.knownOn)) : null;
-  const tanks = then?.stood.tanks ?? (await listTanks(access));
+  const tanks = byName(then?.stood.tanks ?? (await listTanks(access)));
   const ground = await loadBoardGround(access.estateId, scenario, await usedFactors(access.estateId, then), then);
   const lots = await withStops(access.estateId, ground.lots.map((_, index) => lotView(ground, index, tanks)), then?.until ?? null);
   return {
@@ -61,9 +61,14 @@ export async function findScenario(access: Access, options: { scenarioId: string
   return found;
 }
 
+/** T2 before T10. */
+function byName<Named extends { name: string }>(rows: readonly Named[]): Named[] {
+  return [...rows].sort((a, b) => a.name.localeCompare(b.name, undefined, { numeric: true }));
+}
+
 export async function listTanks(access: Access): Promise<TankView[]> {
-  const rows = await Tank.query().where({ estateId: access.estateId }).whereNull('retiredAt').orderBy('name');
-  return rows.map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill }));
+  const rows = await Tank.query().where({ estateId: access.estateId }).whereNull('retiredAt');
+  return byName(rows).map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill }));
 }
 
 /** All lots of a board's ground, as the board shows them. */

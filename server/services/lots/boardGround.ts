@@ -59,7 +59,7 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
       return { ground, zoneOf, zones: own, outlooks, readings, lotOf: lotsOfVines(ground, lots, runs) };
     }),
   );
-  blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name));
+  blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name, undefined, { numeric: true }));
   return { season, lots, blocks, factors, measures, alcoholMethod: await alcoholMethodOf(estateId, then?.until ?? null) };
 }
 

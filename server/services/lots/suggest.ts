@@ -57,7 +57,7 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));
   const placed = new Set(answer.lots.flatMap((lot) => lot.zones));
   const suggestion: SuggestionView = {
-    asked, madeOn: options.today, provedBest: answer.provedBest, groupings: answer.groupings,
+    asked, madeOn: options.today, provedBest: answer.provedBest, groupings: answer.groupings, roomKnown: room.some(({ pickT, pressT }) => pickT !== null || pressT !== null),
     lots: lots.map(({ lot }, at) => ({ lotName: names[at]!, tank: tanks[lot.tank]!.name, chanceOfFit: lot.chanceOfFit, pickOn: days[at] ?? null, zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyPlaced(zone, lot, { zones, lots: answer.lots, rules }) })) })),
     leftOut: leftOut(placed),
   };

@@ -22,8 +22,9 @@ function walkPerVine({ walkSeconds }: PlanEffort): number {
   return walkSeconds ? (walkSeconds(60) - walkSeconds(20)) / 40 : 0;
 }
 
-function sharedZones(question: PlanQuestion, measures: readonly PlanMeasure[]): SharedZone[] {
-  const { effort } = question;
+/** Zones with what a vine there costs: seconds for setting up, walking and all its samples. */
+export function sharedZones(question: PlanQuestion): SharedZone[] {
+  const { effort, measures } = question;
   const seconds = effort.secondsPerVine + walkPerVine(effort) + measures.reduce((sum, measure) => sum + measure.secondsPerSample, 0);
   return question.zones.map((zone) => ({ vines: zone.vines, cost: seconds + (zone.secondsMore ?? 0), minimum: question.minimum ?? ADVISED_MINIMUM, maximum: eligible(zone) }));
 }
@@ -60,7 +61,7 @@ function heaviestFirst(measures: readonly PlanMeasure[], zoneDrivers: readonly (
 function draftBlock(question: PlanQuestion): Draft {
   const { zones, measures, method = 'leastCost' } = question;
   const demands = measures.map((measure) => blockDemand(question, measure));
-  const shared = sharedZones(question, measures);
+  const shared = sharedZones(question);
   // Where every sample costs the same, the cheapest counts for one measure are those shared by spread.
   const costsAlike = shared.every(({ cost }) => cost === shared[0]!.cost);
   const isAlone = method === 'leastCost' && measures.length === 1;

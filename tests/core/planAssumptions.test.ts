@@ -3,7 +3,8 @@ import { seededRandom } from '../../shared/analysis/random.ts';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import { handful, planChoices } from '../../shared/contracts/planChoices.ts';
 import { adviseHandful, betweenVines, handfulSeconds, handfulSpread } from '../../shared/sampling/handful.ts';
-import { blockMaths, zoneMaths } from '../../shared/sampling/maths.ts';
+import { blockMaths } from '../../shared/sampling/blockMaths.ts';
+import { zoneMaths } from '../../shared/sampling/maths.ts';
 import { pilotReadingsOf } from '../../shared/sampling/pilotReadings.ts';
 import { answerBudget, answerPlan } from '../../shared/sampling/plan.ts';
 import { criticalT } from '../../shared/sampling/quantiles.ts';
@@ -213,5 +214,47 @@ describe('the working that is shown', () => {
     expect(block.variance).toBeCloseTo(byHand, 12);
     expect(block.halfWidth).toBeCloseTo(block.t * Math.sqrt(byHand), 10);
     expect(block.halfWidth).toBeLessThanOrEqual(0.5);
+    // By hand: one fewer of 1.1, 0.8 and 1.5 shared by spread would miss the margin, and a vine costs 60 s and 15 s to set up.
+    expect(block).toMatchObject({ margin: 0.5, marginMean: null, sharing: { rule: 'spread', seconds: [75, 75, 75] } });
+    expect(block.sharing!.oneFewer).toBeGreaterThan(0.5);
+  });
+
+  it('says how spread and margin came to one unit', () => {
+    // By hand: 2 % of 22 °Brix is 0.44.
+    const share = choices({ marginKind: 'relative', margin: 0.02 });
+    const { question, counts } = answerPlan(basis(), share);
+    expect(zoneMaths(question, 'brix')[0]).toMatchObject({ margin: 0.44, conversion: { of: 'margin', share: 0.02, mean: 22 } });
+    const block = answerPlan(basis(), planChoices.parse({ ...share, question: 'block' }));
+    const found = blockMaths(block.question, block.counts, 'brix')!;
+    expect(found.margin).toBeCloseTo(0.44, 12);
+    expect(found.marginMean).toBeCloseTo(22, 12);
+    expect(counts.zones[0]!.halfWidths[0]).toBeLessThanOrEqual(0.02);
+  });
+
+  it('gives the count of the plan also where few vines may be drawn or the floor decides', () => {
+    const few = { ...basis(), zones: basis().zones.map((zone) => ({ ...zone, eligible: 12 })) };
+    const { question, counts } = answerPlan(few, choices());
+    const [first] = zoneMaths(question, 'brix');
+    expect(first).toMatchObject({ n: 12, wanted: 21, df: 11, limitedBy: 'eligible' });
+    expect(first!.halfWidth).toBeCloseTo(counts.zones[0]!.halfWidths[0]!, 12);
+    const piloted = answerPlan(basis([{ n: 10, df: 9, spread: 0.2, mean: 22 }, null, null]), planChoices.parse({ ...choices(), afterPilot: true, minimum: 14 }));
+    expect(zoneMaths(piloted.question, 'brix')[0]).toMatchObject({ n: 14, limitedBy: 'minimum', pilot: { n: 10 } });
+    expect(piloted.counts.zones[0]!.visits).toBe(14);
+  });
+
+  it('names the rule that shared the counts of a block', () => {
+    const ruleOf = (over: object) => {
+      const { question, counts } = answerPlan(basis(), planChoices.parse({ ...choices(), question: 'block', ...over }));
+      return blockMaths(question, counts, 'brix')!.sharing!;
+    };
+    for (const allocation of ['equal', 'area', 'spread', 'spreadAndCost'] as const) {
+      expect(ruleOf({ allocation }).rule).toBe(allocation);
+      expect(ruleOf({ allocation }).oneFewer).toBeGreaterThan(0.5);
+    }
+    expect(ruleOf({ allocation: 'leastCost', zoneSeconds: { 1: 200 } })).toMatchObject({ rule: 'leastCost', oneFewer: null, seconds: [275, 75, 75] });
+    expect(ruleOf({ measures: [{ code: 'brix', margin: 8 }] }).rule).toBe('minimum');
+    expect(ruleOf({ measures: [{ code: 'brix', margin: 1e-6 }] }).rule).toBe('everyVine');
+    const { question, counts } = answerPlan(basis(), choices());
+    expect(blockMaths(question, counts, 'brix')!.sharing).toBeNull();
   });
 });

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { combineLinearly, multiplyEstimates, weightedEstimate } from '../../shared/sampling/combineEstimates.ts';
 import { stratifiedEstimate } from '../../shared/sampling/stratified.ts';
 import { howManyMore, intervalOf, meanInterval } from '../../shared/sampling/precision.ts';
+import { criticalT } from '../../shared/sampling/quantiles.ts';
 import { summarise } from '../../shared/sampling/variances.ts';
 
 function expectRelative(actual: number, expected: number, tolerance = 1e-6): void {
@@ -35,6 +36,7 @@ describe('interval of a mean', () => {
     const interval = meanInterval({ n: 195, mean: 9.26146, sd: 0.02278881 }, 0.95);
     expectRelative(interval.lower, 9.258242, 1e-7);
     expectRelative(interval.upper, 9.264679, 1e-7);
+    expectRelative(criticalT(0.95, 194), 1.972268, 1e-6);
   });
 
   it('gives the interval of the NIST Michelso set when its values are taken as independent', () => {

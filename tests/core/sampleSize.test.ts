@@ -23,6 +23,7 @@ describe('normal sample size', () => {
     expect(normalSampleSizeWhole({ spread: 1.5, margin: 0.5, confidence: 0.95, populationSize: 200 })).toBe(30);
     // 260 of 800 vines at 5 %: the figure of Washington State University extension (topic 7-06), here from CV 50 %
     expectRelative(normalSampleSize({ spread: 0.5, margin: 0.05, confidence: 0.95 }), 384.145882, 1e-8);
+    expectRelative(correctForPopulation(384.145882, 800), 259.526, 1e-6);
     expect(normalSampleSizeWhole({ spread: 0.5, margin: 0.05, confidence: 0.95, populationSize: 800 })).toBe(260);
   });
 

@@ -79,6 +79,7 @@ describe('pooled variance', () => {
     expect(first.df).toBe(22);
     const second = pooledVariance([{ variance: 0.0144, df: 3 }, { variance: 0.0225, df: 5 }, { variance: 0.0081, df: 4 }, { variance: 0.0196, df: 2 }]);
     expectRelative(second.variance, 0.016235714, 4e-8);
+    expectRelative(Math.sqrt(second.variance), 0.127419442, 1e-8);
     expect(second.df).toBe(14);
     const third = pooledVariance([{ variance: 1.21, df: 9 }, { variance: 0.9, df: 7 }, { variance: 1.69, df: 11 }, { variance: 2.1, df: 5 }]);
     expectRelative(third.variance, 1.44625, 1e-12);

@@ -215,6 +215,7 @@ export const es: Record<SentenceKey, string> = {
   unreadable: 'No se pudo leer esta petición. Revise su forma e inténtelo de nuevo.',
   fault: 'Algo ha fallado por nuestra parte. No se ha cambiado nada; inténtelo de nuevo y avísenos si continúa.',
   aName: 'nombre',
+  tooManyToDraw: 'Este plan pide {n} cepas; se sortean como mucho {most} de una vez. Amplíe los márgenes, baje la confianza o muestree zonas juntas.',
   noVines: 'Ninguna zona de {block} tiene una cepa que muestrear: todas están marcadas como marra, reposición u otra variedad. Mire las marcas de sus cepas en las hileras de la parcela y haga después el plan.',
   rowsAtStake: 'Las hileras de {block} se harían de nuevo: {losses}. Para hacerlo de todos modos, envíe rowsMayGo con el cambio.',
   surveyGoes: 'sus hileras medidas en el campo se trazarían según el marco y la dirección',

@@ -215,6 +215,7 @@ export const pt: Record<SentenceKey, string> = {
   unreadable: 'Não foi possível ler este pedido. Verifique a sua forma e tente de novo.',
   fault: 'Algo falhou do nosso lado. Nada foi alterado; tente de novo e avise-nos se continuar.',
   aName: 'nome',
+  tooManyToDraw: 'Este plano pede {n} cepas; sorteiam-se no máximo {most} de cada vez. Alargue as margens, baixe a confiança ou amostre zonas juntas.',
   noVines: 'Nenhuma zona de {block} tem uma cepa para amostrar: todas estão marcadas como falha, retancha ou outra casta. Veja as marcas das cepas nos bardos da parcela e depois faça o plano.',
   rowsAtStake: 'Os bardos de {block} seriam feitos de novo: {losses}. Para o fazer mesmo assim, envie rowsMayGo com a alteração.',
   surveyGoes: 'os seus bardos levantados no terreno seriam traçados pelo compasso e pela direção',

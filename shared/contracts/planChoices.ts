@@ -73,7 +73,7 @@ export type PaceChoices = z.infer<typeof paceChoices>;
 
 /** Everything a person decides about a plan. The same choices on the same ground give the same plan. */
 export const planChoices = z.object({
-  measures: z.array(plannedMeasure).min(1, 'Choose at least one measure.').max(12).refine((list) => new Set(list.map(({ code }) => code)).size === list.length, 'Each measure can be in a plan once.'),
+  measures: z.array(plannedMeasure).min(1, 'Choose at least one measure.').max(40, 'A plan takes up to 40 measures.').refine((list) => new Set(list.map(({ code }) => code)).size === list.length, 'Each measure can be in a plan once.'),
   /** Each zone's own mean within its margin, or the mean of the block. */
   question: z.enum(['eachZone', 'block']).default('eachZone'),
   allocation: z.enum(planAllocations).default('leastCost'),

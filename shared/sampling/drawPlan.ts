@@ -47,6 +47,12 @@ export interface PlanDraw {
   readonly isGroundAssumedOpen: boolean;
 }
 
+/**
+ * Most vines that a plan draws: some three days of walking for one person, and about a second for the exact walk past
+ * them, which grows with the third power of the count beyond.
+ */
+export const MOST_TARGETS = 1000;
+
 /** Target vines of a plan in walking order, and what the walk from the gate and back takes. */
 export function drawPlan(request: PlanDrawRequest): PlanDraw {
   const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, secondsAt, seed, reserveShare } = request;

@@ -211,6 +211,16 @@ describe('a plan', () => {
     expect(await Plan.query().resultSize()).toBe(0);
   });
 
+  it('says at once that a plan of thousands of vines is not drawn, and what makes it smaller', async () => {
+    const refused = await manager.post(`${base()}/zonings/${place.zoningId}/plans`, { name: 'All of them', measures: [{ ...clusters, margin: 0.0005 }] });
+    expect(refused.status).toBe(422);
+    expect(refused.body).toMatchObject({ code: 'tooManyVines', detail: expect.stringMatching(/^This plan asks for \d+ vines; up to 1000 are drawn at once\. Widen the margins/) });
+    const made = await plan();
+    const changed = await manager.patch(`${base()}/plans/${made.id}`, { choices: { ...made.choices, measures: [{ ...clusters, margin: 0.0005 }] } });
+    expect(changed.status).toBe(422);
+    expect(((await manager.get(`${base()}/plans/${made.id}`)).body as PlanView).vines).toBe(made.vines);
+  });
+
   it('leaves as a table that a spreadsheet cannot run and as waypoints', async () => {
     await MeasureRecord.query().where({ estateId: estate.estateId, code: 'clusterCount' }).patch({ inUse: true });
     const made = await plan({ name: '=Plan & co' });

@@ -3,6 +3,7 @@ export const es: Record<string, string> = {
   'A PIN has four to eight figures.': 'Un PIN tiene de cuatro a ocho cifras.',
   'A layer is chosen twice; choose each once.': 'Una capa está elegida dos veces; elija cada una una sola vez.',
   'A password needs at least 10 characters.': 'Una contraseña necesita al menos 10 caracteres.',
+  'A plan takes up to 40 measures.': 'Un plan admite hasta 40 medidas.',
   'A reading needs its vine (row and number) or its bag.': 'Una lectura necesita su cepa (hilera y número) o su bolsa.',
   'A ring needs at least four positions.': 'Un anillo necesita al menos cuatro posiciones.',
   'A temperature lies between −60 and 60 °C.': 'Una temperatura está entre −60 y 60 °C.',

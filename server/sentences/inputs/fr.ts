@@ -3,6 +3,7 @@ export const fr: Record<string, string> = {
   'A PIN has four to eight figures.': 'Un code PIN a quatre à huit chiffres.',
   'A layer is chosen twice; choose each once.': 'Une couche est choisie deux fois ; choisissez chacune une seule fois.',
   'A password needs at least 10 characters.': 'Un mot de passe a au moins 10 caractères.',
+  'A plan takes up to 40 measures.': 'Un plan prend jusqu’à 40 mesures.',
   'A reading needs its vine (row and number) or its bag.': 'Une mesure a besoin de son cep (rang et numéro) ou de son sachet.',
   'A ring needs at least four positions.': 'Un anneau a besoin d’au moins quatre positions.',
   'A temperature lies between −60 and 60 °C.': 'Une température se situe entre −60 et 60 °C.',

@@ -3,6 +3,7 @@ export const it: Record<string, string> = {
   'A PIN has four to eight figures.': 'Un PIN ha da quattro a otto cifre.',
   'A layer is chosen twice; choose each once.': 'Uno strato è scelto due volte; scegliere ciascuno una volta sola.',
   'A password needs at least 10 characters.': 'Una password ha almeno 10 caratteri.',
+  'A plan takes up to 40 measures.': 'Un piano accetta fino a 40 misure.',
   'A reading needs its vine (row and number) or its bag.': 'Una lettura ha bisogno del suo ceppo (filare e numero) o del suo sacchetto.',
   'A ring needs at least four positions.': 'Un anello ha bisogno di almeno quattro posizioni.',
   'A temperature lies between −60 and 60 °C.': 'Una temperatura sta tra −60 e 60 °C.',

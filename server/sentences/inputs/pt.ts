@@ -3,6 +3,7 @@ export const pt: Record<string, string> = {
   'A PIN has four to eight figures.': 'Um PIN tem de quatro a oito algarismos.',
   'A layer is chosen twice; choose each once.': 'Uma camada está escolhida duas vezes; escolha cada uma só uma vez.',
   'A password needs at least 10 characters.': 'Uma palavra-passe precisa de pelo menos 10 caracteres.',
+  'A plan takes up to 40 measures.': 'Um plano aceita até 40 medidas.',
   'A reading needs its vine (row and number) or its bag.': 'Uma leitura precisa da sua cepa (bardo e número) ou do seu saco.',
   'A ring needs at least four positions.': 'Um anel precisa de pelo menos quatro posições.',
   'A temperature lies between −60 and 60 °C.': 'Uma temperatura está entre −60 e 60 °C.',

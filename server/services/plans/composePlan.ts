@@ -3,14 +3,16 @@ import type { Labels } from '../../../shared/analysis/grid.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
-import { drawPlan, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
+import { drawPlan, MOST_TARGETS, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
 import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
 import { answerPlan, secondsAtVine, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { headOf } from '../../../shared/sampling/pooledZones.ts';
 import { pacedGround } from '../../../shared/sampling/terrain.ts';
 import { walksAsLaid } from '../../../shared/sampling/walkEstimate.ts';
+import { Unusable } from '../../errors.ts';
 import { gridOf } from '../../ground/blockVines.ts';
 import { loadTerrain } from '../../ground/terrain.ts';
+import { say } from '../../sentences/say.ts';
 import { loadPlanBasis } from './planBasis.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
@@ -31,6 +33,8 @@ export async function composePlan(estateId: string, zoningId: string, made: { ch
   const planGround = await loadPlanGround(estateId, zoningId, choices.draw);
   const [basis, terrain] = await Promise.all([loadPlanBasis(estateId, planGround, choices.spread), loadTerrain(estateId, planGround.ground)]);
   const answer = answerPlan(basis, choices);
+  const { visits } = answer.counts;
+  if (visits > MOST_TARGETS) throw new Unusable('tooManyVines', say('tooManyToDraw', { n: visits, most: MOST_TARGETS }));
   const { ground, unusable, gateXY } = planGround;
   const draw = drawPlan({
     rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, ground: pacedGround(choices.pace, terrain),

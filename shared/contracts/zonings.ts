@@ -88,7 +88,8 @@ export const zoningView = z.object({
   withBlockNames: z.array(z.string()),
   /** Cells that the zones were found on, metres: coarser than the block's own where a block zoned along has coarser ones. */
   cellSizeM: z.number(),
-  options: zoningOptions,
+  /** What was asked; without layers where an older version kept it in another form. */
+  options: zoningOptions.extend({ layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })) }),
   engineVersion: z.string(),
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),
   isJudged: z.boolean(),

@@ -214,7 +214,7 @@ describe('a plan', () => {
   it('says at once that a plan of thousands of vines is not drawn, and what makes it smaller', async () => {
     const refused = await manager.post(`${base()}/zonings/${place.zoningId}/plans`, { name: 'All of them', measures: [{ ...clusters, margin: 0.0005 }] });
     expect(refused.status).toBe(422);
-    expect(refused.body).toMatchObject({ code: 'tooManyVines', detail: expect.stringMatching(/^This plan asks for \d+ vines; up to 1000 are drawn at once\. Widen the margins/) });
+    expect(refused.body).toMatchObject({ code: 'tooManyVines', detail: expect.stringMatching(/^This plan asks for \d+ vines; up to 600 are drawn at once\. Widen the margins/) });
     const made = await plan();
     const changed = await manager.patch(`${base()}/plans/${made.id}`, { choices: { ...made.choices, measures: [{ ...clusters, margin: 0.0005 }] } });
     expect(changed.status).toBe(422);

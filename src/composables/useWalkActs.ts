@@ -54,11 +54,11 @@ export function useWalkActs({ round, stop, vine, measure, openIndex, lastEntry }
       mode.value = 'odd';
       return;
     }
-    const [typed, index] = [text.value, round.value!.stops.indexOf(stop.value)];
-    const kept = field.record(stop.value, vine.value, { measure: measure.value, text: typed, value, isOdd: isOddKept, supersedes: correcting.value?.id ?? null, readBy: readBy.value });
+    const [typed, corrected, index] = [text.value, correcting.value, round.value!.stops.indexOf(stop.value)];
+    const kept = field.record(stop.value, vine.value, { measure: measure.value, text: typed, value, isOdd: isOddKept, supersedes: corrected?.id ?? null, readBy: readBy.value });
     if (openIndex.value !== null) at.value = openIndex.value;
     [text.value, mode.value, correcting.value, isTypingLab.value] = ['', mode.value === 'tally' ? 'tally' : 'keys', null, false];
-    if (!(await isKept(kept, index))) text.value = typed;
+    if (!(await isKept(kept, index))) [text.value, correcting.value] = [typed, corrected];
   }
 
   async function notThis(state: VineState): Promise<void> {

@@ -1,4 +1,4 @@
-import { openDB, type DBSchema, type IDBPDatabase } from 'idb';
+import { openDB, unwrap, wrap, type DBSchema, type IDBPDatabase } from 'idb';
 import type { BagOutcome, NewBag } from '../../shared/contracts/bags.ts';
 import type { NewReading, ReadingOutcome, VineFinding } from '../../shared/contracts/readings.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
@@ -124,24 +124,24 @@ export async function fieldDatabase(name = 'patchrow-field'): Promise<FieldDatab
   return opened;
 }
 
+const version = 3;
+const parts = ['rounds', 'lists', 'entries', 'photos', 'bags', 'facts', 'closings'] as const;
+
+/** A store that lacks a part, whatever left it so, is made whole under its next number; what it holds stays. */
 async function open(name: string): Promise<FieldDatabase> {
-  return openDB<FieldSchema>(name, 3, {
-    upgrade(database, before) {
-      if (before < 3) database.createObjectStore('closings', { keyPath: 'key' });
-      if (before < 2) {
-        database.createObjectStore('photos', { keyPath: 'id' }).createIndex('received', 'received');
-        const bags = database.createObjectStore('bags', { keyPath: 'id' });
-        bags.createIndex('received', 'received');
-        bags.createIndex('code', 'code');
-      }
-      if (before >= 1) return;
-      database.createObjectStore('rounds', { keyPath: 'id' }).createIndex('person', 'personId');
-      database.createObjectStore('lists', { keyPath: 'key' });
-      const entries = database.createObjectStore('entries', { keyPath: 'id' });
-      entries.createIndex('received', 'received');
-      entries.createIndex('round', 'roundId');
-      database.createObjectStore('facts', { keyPath: 'key' });
-    },
+  const database = await openAs(name, version).catch((error: unknown) => {
+    // A newer program, or the mending below, has been here.
+    if (error instanceof DOMException && error.name === 'VersionError') return openAs(name);
+    throw error;
+  });
+  if (parts.every((part) => database.objectStoreNames.contains(part))) return database;
+  database.close();
+  return openAs(name, database.version + 1);
+}
+
+async function openAs(name: string, number?: number): Promise<FieldDatabase> {
+  const database = await openDB<FieldSchema>(name, number, {
+    upgrade: addMissing,
     // Another tab with a newer program must not wait for this one.
     blocking: (_now, _next, event) => {
       opened = null;
@@ -149,4 +149,39 @@ async function open(name: string): Promise<FieldDatabase> {
     },
     terminated: () => void (opened = null),
   });
+  expectAborts(unwrap(database));
+  return database;
+}
+
+/** By what is there, not by its number: nothing that exists is touched. */
+function addMissing(database: FieldDatabase): void {
+  const missing = new Set<string>(parts.filter((part) => !database.objectStoreNames.contains(part)));
+  if (missing.has('rounds')) database.createObjectStore('rounds', { keyPath: 'id' }).createIndex('person', 'personId');
+  if (missing.has('lists')) database.createObjectStore('lists', { keyPath: 'key' });
+  if (missing.has('entries')) {
+    const entries = database.createObjectStore('entries', { keyPath: 'id' });
+    entries.createIndex('received', 'received');
+    entries.createIndex('round', 'roundId');
+  }
+  if (missing.has('photos')) database.createObjectStore('photos', { keyPath: 'id' }).createIndex('received', 'received');
+  if (missing.has('bags')) {
+    const bags = database.createObjectStore('bags', { keyPath: 'id' });
+    bags.createIndex('received', 'received');
+    bags.createIndex('code', 'code');
+  }
+  if (missing.has('facts')) database.createObjectStore('facts', { keyPath: 'key' });
+  if (missing.has('closings')) database.createObjectStore('closings', { keyPath: 'key' });
+}
+
+/**
+ * Where a store breaks, a transaction ends twice: for the request that somebody waits for, and for the whole of it, where
+ * often nobody does any more. The second must not come up as an error of the page; who awaits it is told all the same.
+ */
+export function expectAborts(database: Pick<IDBDatabase, 'transaction'>): void {
+  const begin = database.transaction.bind(database);
+  database.transaction = (...args: Parameters<IDBDatabase['transaction']>) => {
+    const transaction = begin(...args);
+    wrap(transaction).done.catch(() => undefined);
+    return transaction;
+  };
 }

@@ -18,20 +18,30 @@ export function isReady({ hasRound, canWrite, hasProgram, hasSpace }: Readiness)
   return hasRound && canWrite && hasProgram && hasSpace;
 }
 
-/** Reads the stored round back, writes and reads a line, and looks for the kept program: a test, not a wish. */
+/** Reads the stored round back, writes a day's worth and reads it, and looks for the kept program: a test, not a wish. */
 export async function checkReadiness(owner: { estateId: string; personId: string }, roundId: string, now: Date): Promise<Readiness> {
   const kept = await orNothing(keptRound(owner, roundId), null);
   const hasRound = kept !== null && kept.round.stops.every(({ rowId }) => kept.round.rows.some(({ id }) => id === rowId)) && kept.round.measures.length > 0;
-  return { hasRound, canWrite: await writesAndReads(now), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
+  return { hasRound, canWrite: await writesAndReads(), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
 }
 
+/** As much as a day of readings: a phone that still takes a line may have no room for the next. */
+const trialBytes = 256 * 1024;
+/** The most a browser gives at once. */
+const randomBytes = 65_536;
+
 /** False as well where the phone is full or its store was taken away: that is what is asked here. */
-async function writesAndReads(now: Date): Promise<boolean> {
-  const value = now.toISOString();
+async function writesAndReads(): Promise<boolean> {
   try {
     const database = await fieldDatabase();
-    await database.put('facts', { key: 'selfTest', value });
-    return (await database.get('facts', 'selfTest'))?.value === value;
+    // By chance, so that no store can press it into less room.
+    const value = new Uint8Array(trialBytes);
+    for (let at = 0; at < trialBytes; at += randomBytes) crypto.getRandomValues(value.subarray(at, at + randomBytes));
+    const transaction = database.transaction('facts', 'readwrite', { durability: 'strict' });
+    await Promise.all([transaction.store.put({ key: 'selfTest', value }), transaction.done]);
+    const stored = (await database.get('facts', 'selfTest'))?.value;
+    await database.delete('facts', 'selfTest');
+    return stored instanceof Uint8Array && stored.length === trialBytes && stored.every((byte, at) => byte === value[at]);
   } catch {
     return false;
   }

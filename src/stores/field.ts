@@ -68,7 +68,8 @@ export const useFieldStore = defineStore('field', () => {
   whenAnotherTabWrites(() => void count());
 
   async function show(roundId: string): Promise<void> {
-    const stored = await orNothing(entriesOfRound(owner.personId, roundId), []);
+    // A store that cannot be read just now still holds what it confirmed.
+    const stored = await orNothing(entriesOfRound(owner.personId, roundId), entries.value.filter((entry) => entry.roundId === roundId && !writing.has(entry.id)));
     const isStored = new Set(stored.map(({ id }) => id));
     entries.value = [...stored, ...[...writing.values()].filter((entry) => entry.roundId === roundId && !isStored.has(entry.id))];
   }
@@ -143,6 +144,10 @@ export const useFieldStore = defineStore('field', () => {
     entries.value = [...entries.value, entry];
     try {
       await addEntries([entry]);
+    } catch (error) {
+      // At once and by name: a store that has broken cannot be counted, and the list would stay as it was.
+      entries.value = entries.value.filter(({ id }) => id !== entry.id);
+      throw error;
     } finally {
       writing.delete(entry.id);
       tellOtherTabs();

@@ -9,9 +9,14 @@ export interface BandReading {
   /** Text of the no-data tag that is not a number. */
   badNoData: string | null;
   isPalette: boolean;
+  /** Name of the colours of a picture that are no measurements: CMYK, CIELAB, YCbCr; null for anything else. */
+  pictureColours: string | null;
   /** Unit of the first band as the file writes it. */
   unit: string | null;
 }
+
+/** PhotometricInterpretation of TIFF 6.0 and its technical notes for colours mixed for the eye or the press. */
+const pictureColours: Readonly<Record<number, string>> = { 5: 'CMYK', 6: 'YCbCr', 8: 'CIELAB', 9: 'ICCLAB', 10: 'ITULAB' };
 
 /** Scale, offset, name and no-data value of each band. The alpha band (ExtraSamples 1 or 2) is not a band of values. */
 export function readBands(layout: RasterLayout, tags: GeoTags): BandReading {
@@ -34,7 +39,7 @@ export function readBands(layout: RasterLayout, tags: GeoTags): BandReading {
       colour: colours[i] ?? null,
     };
   }).filter((band) => band.index !== alphaBand);
-  return { bands, alphaBand, badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null, isPalette: tags.photometric === 3, unit: items.find((item) => item.role === 'unittype' && item.sample === 0)?.text ?? null };
+  return { bands, alphaBand, badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null, isPalette: tags.photometric === 3, pictureColours: pictureColours[tags.photometric ?? -1] ?? null, unit: items.find((item) => item.role === 'unittype' && item.sample === 0)?.text ?? null };
 }
 
 /** The no-data tag holds text. NaN needs no value of its own: NaN is always missing. Null: no usable value. */

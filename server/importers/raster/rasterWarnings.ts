@@ -6,10 +6,11 @@ interface Notes {
   raster: OpenRaster;
   badNoData: string | null;
   isPalette: boolean;
+  pictureColours: string | null;
 }
 
 /** What was noticed in the tags and does not stop the file from being used. */
-export function bandWarnings({ raster, badNoData, isPalette }: Notes): ImportWarning[] {
+export function bandWarnings({ raster, badNoData, isPalette, pictureColours }: Notes): ImportWarning[] {
   const { layout, structure, otherPages } = raster;
   const warnings: ImportWarning[] = [];
   if (badNoData !== null) {
@@ -17,6 +18,7 @@ export function bandWarnings({ raster, badNoData, isPalette }: Notes): ImportWar
     warnings.push({ code: 'no-data-text', text: `Its mark for missing values is "${value}", which is not a number; no value is treated as missing because of it.`, params: { value } });
   }
   if (isPalette) warnings.push({ code: 'palette', text: 'Its values are numbers of colours, not measurements. Use it only as a layer of classes.' });
+  if (pictureColours !== null) warnings.push({ code: 'picture-colours', text: `Its bands are colours of a picture (${pictureColours}), not reflectance; an index made of them means nothing.`, params: { colours: pictureColours } });
   if (layout.bits < 8) warnings.push({ code: 'few-bits', text: `Its values have ${layout.bits} ${layout.bits === 1 ? 'bit' : 'bits'}: at most ${2 ** layout.bits} different values.`, params: { bits: layout.bits } });
   if (countsDownwards(heightSystemOf(raster.tags.geoKeys))) warnings.push({ code: 'depths', text: 'Its heights count downwards: a larger number means lower ground. Turn their sign round before they are used as elevation.' });
   if (structure.brokenChain) warnings.push({ code: 'broken-chain', text: 'Its list of pictures is damaged after the first one; only the first is used.' });

@@ -45,6 +45,8 @@ const whole: CorpusCase[] = [
   raster('NaN and infinity among floats', () => tiff({ type: 'f32', value: (col, row) => (col === 0 ? NaN : col === 1 ? Infinity : col + row) }), accepted()),
   raster('pixels that mean points', () => tiff({ geo: geo({ isPoint: true }) }), accepted()),
   raster('a palette', () => tiff({ type: 'u8', value: (col) => col, tags: { 262: [3] } }), accepted('palette')),
+  raster('colours of a printer', () => tiff({ type: 'u8', bands: 4, value: (col, row) => col + row, tags: { 262: [5] } }), accepted('picture-colours')),
+  raster('colours of the eye', () => tiff({ type: 'u8', bands: 3, value: (col, row) => col + row, tags: { 262: [8] } }), accepted('picture-colours')),
   raster('a capture date', () => tiff({ tags: { 306: '2026:07:14 10:30:00' } }), accepted()),
   raster('geographic pixels', () => tiff({ geo: { epsg: 4326, x: 3.0005, y: 44.7045, pixel: 0.00002 } }), accepted()),
   raster('Web Mercator', () => tiff({ geo: { epsg: 3857, x: 334030, y: 5575200, pixel: 2 } }), accepted()),

@@ -1,6 +1,8 @@
 /**
  * Which layers count? Layers measured on the vines or in the soil of this block count the same; two that repeat each other
- * share one voice; terrain and soil maps stay out by default, because their structure says nothing about the vines and lets
+ * share one voice; of three and more, one that does not resemble itself at the width of a patch has only a small voice, as spatial
+ * principal components weigh variables by their autocorrelation before management zones are made (Dray, Saïd & Débias 2008; Córdoba
+ * et al. 2013, both from memory); terrain and soil maps stay out by default, because their structure says nothing about the vines and lets
  * lines in that the vines do not show. A context layer whose edges coincide with the evidence is offered, never added.
  * In: layers on the grid. Out: one weight a layer with the reason as a code and figures. Weights need no comparison of edges,
  * which is work of its own on a small plane, so that it may be done elsewhere and added afterwards.
@@ -13,7 +15,7 @@ import { quantileOfSorted } from './quantile.ts';
 import type { Random } from './random.ts';
 import { commonCells, evidenceField, type EvidenceField } from './verdictField.ts';
 
-export type LayerAdviceCode = 'evidence' | 'repeats' | 'context-off' | 'context-offered' | 'only-context';
+export type LayerAdviceCode = 'evidence' | 'repeats' | 'scattered' | 'context-off' | 'context-offered' | 'only-context';
 
 export interface LayerAdvice {
   readonly id: string;
@@ -33,6 +35,15 @@ export interface AdvisableLayer {
 
 /** Above this two layers say the same; common practice in soil zoning. */
 const REPEATS_ABOVE = 0.9;
+/**
+ * Of two measured layers neither is doubted: nobody tells which is right, and on simulated blocks leaving one out costs more than
+ * it saves. With a third, noise among clear layers is told apart.
+ */
+const LEAST_TO_COMPARE = 3;
+/** Correlation with itself at one patch width below which a layer counts as scattered, and what another must have for that. */
+const SCATTERED_BELOW = 0.12;
+const CLEAR_ABOVE = 0.25;
+const LEAST_VOICE = 0.05;
 const LEAST_DEVIATIONS = 3;
 const LEAST_EXCESS = 0.15;
 /** Edges are compared on a coarse plane; the comparison is one of many small transforms. */
@@ -43,11 +54,27 @@ const SPREAD_CELLS = 5000;
 /** A prime, so that the steps do not fall on one column. */
 const FAR_STEP = 7919;
 
-/** Weights with their reasons; what the edges of context layers say is added by `withEdges`. */
-export function adviseLayers(layers: readonly AdvisableLayer[]): LayerAdvice[] {
+/**
+ * Weights with their reasons; what the edges of context layers say is added by `withEdges`. `structures`: by layer, how much it
+ * resembles itself at one patch width; empty where layers are not compared by it.
+ */
+export function adviseLayers(layers: readonly AdvisableLayer[], structures: ReadonlyMap<string, number> = new Map()): LayerAdvice[] {
   const evidence = layers.filter(isEvidence);
   if (evidence.length === 0) return layers.map(({ id }) => advice(id, 1, 'only-context'));
-  return layers.map((layer) => (evidence.includes(layer) ? adviseEvidence(layer, evidence) : advice(layer.id, 0, 'context-off')));
+  const clearest = Math.max(...structures.values());
+  return layers.map((layer) => {
+    if (!evidence.includes(layer)) return advice(layer.id, 0, 'context-off');
+    const structure = structures.get(layer.id);
+    const isScattered = structure !== undefined && structure < SCATTERED_BELOW && clearest >= CLEAR_ABOVE;
+    if (isScattered) return advice(layer.id, Math.max(structure, LEAST_VOICE) / clearest, 'scattered', { figures: { structure, clearest } });
+    return adviseEvidence(layer, evidence);
+  });
+}
+
+/** The measured layers to compare by their structure: those that may vote, if there are enough of them. */
+export function layersToCompare<Layer extends AdvisableLayer & { readonly weight: number | null }>(layers: readonly Layer[]): Layer[] {
+  const voting = layers.filter((layer) => isEvidence(layer) && layer.weight !== 0);
+  return voting.length >= LEAST_TO_COMPARE ? voting : [];
 }
 
 function isEvidence({ role, kind }: AdvisableLayer): boolean {

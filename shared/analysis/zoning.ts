@@ -7,7 +7,7 @@
  */
 
 import { polygonsArea } from '../geo/rings.ts';
-import { adviseLayers, compareEdges, edgeTask, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
+import { adviseLayers, compareEdges, edgeTask, layersToCompare, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import type { Grid } from './grid.ts';
 import { allReachWidth } from './labelsWidth.ts';
@@ -16,7 +16,7 @@ import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
 import { adviseZoneCount } from './zoneCount.ts';
 import { cleanZones } from './zoningClean.ts';
-import { evidenceTask, weighEvidence, type EvidenceTask, type ZoningEvidence } from './zoningEvidence.ts';
+import { evidenceTask, structuresOf, weighEvidence, type EvidenceTask, type ZoningEvidence } from './zoningEvidence.ts';
 import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones, type FeatureTable } from './zoningFit.ts';
 import { checkedOptions } from './zoningOptions.ts';
 import { decideWeights, prepareLayers, weightedColumns, type PreparedLayers } from './zoningPrepare.ts';
@@ -27,7 +27,7 @@ import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
 import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '4';
+export const ENGINE_VERSION = '5';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
@@ -68,9 +68,12 @@ export function prepareZoning(input: ZoningInput): ZoningGround {
   const prepared = prepareLayers(grid, stacked.layers, options);
   const { layers } = prepared;
   const advisable = layers.map((layer) => ({ ...layer, cells: layer.smoothed }));
-  const advised = adviseLayers(advisable);
+  const areaM2 = polygonsArea(grid.outlineXY);
+  const advised = adviseLayers(advisable, structuresOf(grid, layersToCompare(advisable), areaM2));
   const weights = decideWeights(layers, advised);
-  const evidence = evidenceTask({ grid, layers, weights, areaM2: polygonsArea(grid.outlineXY), seed: options.seed });
+  // Who gives such a layer a weight of their own wants it heard.
+  const scattered = new Set(layers.filter(({ weight }, l) => weight === null && advised[l]!.code === 'scattered').map(({ id }) => id));
+  const evidence = evidenceTask({ grid, layers, weights, areaM2, seed: options.seed, scattered });
   return { input, options, stacked, prepared, advised, weights, beside: { seed: options.seed, edges: edgeTask(grid, advisable), evidence } };
 }
 

@@ -4,7 +4,7 @@
  * first and weighed afterwards: they are small and plain, so that another thread can weigh them meanwhile.
  */
 
-import type { Grid } from './grid.ts';
+import type { Cells, Grid } from './grid.ts';
 import { judge, type VerdictResult } from './verdict.ts';
 import { evidenceField, type EvidenceField } from './verdictField.ts';
 import { gapCurve, type GapAtK } from './verdictGap.ts';
@@ -25,6 +25,8 @@ export interface EvidenceInput {
   readonly weights: readonly number[];
   readonly areaM2: number;
   readonly seed: number;
+  /** Ids of measured layers that look like noise: their gradients would hide the calm cells of the others. */
+  readonly scattered?: ReadonlySet<string>;
 }
 
 /** The planes to weigh; null where there is nothing to compare with. */
@@ -46,18 +48,26 @@ export interface ZoningEvidence {
 }
 
 /** Without a measured layer in use there will be no verdict; the curve is then made from the layers that are used. */
-export function evidenceTask({ grid, layers, weights, areaM2, seed }: EvidenceInput): EvidenceTask {
+export function evidenceTask({ grid, layers, weights, areaM2, seed, scattered = new Set() }: EvidenceInput): EvidenceTask {
   const used = layers.map((layer, l) => ({ layer, weight: weights[l]! })).filter(({ layer, weight }) => weight > 0 && layer.kind === 'number');
   const measured = used.filter(({ layer }) => layer.role === 'evidence');
   const voters = measured.length > 0 ? measured : used;
-  const cells = voters.map(({ layer }) => layer.smoothed);
+  const clear = voters.filter(({ layer }) => !scattered.has(layer.id));
+  const cellsOf = (some: typeof voters) => some.map(({ layer }) => layer.smoothed);
   return {
     areaM2,
     seed,
-    gapField: voters.length === 0 ? null : weighted(evidenceField(grid, cells, { mostCells: MOST_GAP_CELLS }), voters.map(({ weight }) => weight)),
-    structureField: measured.length === 0 ? null : evidenceField(grid, cells, { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH }),
+    gapField: clear.length === 0 ? null : weighted(evidenceField(grid, cellsOf(clear), { mostCells: MOST_GAP_CELLS }), clear.map(({ weight }) => weight)),
+    structureField: measured.length === 0 ? null : evidenceField(grid, cellsOf(measured), { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH }),
     measuredIds: measured.map(({ layer }) => layer.id),
   };
+}
+
+/** How much each layer resembles itself at one patch width, by id; nothing for fewer layers than can be compared. */
+export function structuresOf(grid: Grid, layers: readonly { readonly id: string; readonly cells: Cells }[], areaM2: number): Map<string, number> {
+  if (layers.length === 0) return new Map();
+  const field = evidenceField(grid, layers.map(({ cells }) => cells), { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH });
+  return new Map(layerStructures(field, areaM2).map(({ structure }, l) => [layers[l]!.id, structure]));
 }
 
 export function weighEvidence({ areaM2, seed, gapField, structureField, measuredIds }: EvidenceTask): ZoningEvidence {

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { rankCorrelation } from '../../shared/analysis/agreement.ts';
 import { gridOfOutline } from '../../shared/analysis/grid.ts';
 import { pointTable } from '../../shared/analysis/kmeansPoints.ts';
-import { adviseLayers, compareEdges, edgeTask, withEdges, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
+import { adviseLayers, layersToCompare, compareEdges, edgeTask, withEdges, type AdvisableLayer } from '../../shared/analysis/layerAdvice.ts';
 import { edgeComparison, interiorCells } from '../../shared/analysis/layerAdviceEdges.ts';
 import { principalComponents } from '../../shared/analysis/principal.ts';
 import { randomNormal, seededRandom, type Random } from '../../shared/analysis/random.ts';
@@ -148,5 +148,23 @@ describe('principal components', () => {
     const { shares, loadings } = principalComponents(pointTable([[2, 0, 1], [4, 1, 3], [6, 3, 2], [8, 3, 6], [1, 0, 0]]), 1);
     [0.931339528, 0.0679847736, 0.000675698305].forEach((share, i) => expect(shares[i]).toBeCloseTo(share, 8));
     [0.7418454, 0.36369011, 0.56337812, -0.30190849, -0.56903263, 0.76488766].forEach((part, i) => expect(loadings[i]).toBeCloseTo(part, 7));
+  });
+});
+
+describe('a measured layer that looks like noise', () => {
+  const layer = (id: string) => ({ id, role: 'evidence' as const, kind: 'number' as const, weight: null, cells: Float32Array.from({ length: 50 }, (_, i) => Math.sin(i * id.length)) });
+  const three = [layer('a'), layer('bb'), layer('ccc')];
+
+  it('has a small voice among clear ones, and says by how much it is less clear', () => {
+    const advised = adviseLayers(three, new Map([['a', 0.6], ['bb', 0.5], ['ccc', -0.04]]));
+    expect(advised.map(({ code }) => code)).toEqual(['evidence', 'evidence', 'scattered']);
+    expect(advised[2]).toMatchObject({ weight: expect.closeTo(0.05 / 0.6, 12), figures: { structure: -0.04, clearest: 0.6 } });
+  });
+
+  it('counts as the others where none is clear, and is not looked for among two or when a person left one out', () => {
+    expect(adviseLayers(three, new Map([['a', 0.1], ['bb', 0.02], ['ccc', -0.04]])).map(({ weight }) => weight)).toEqual([1, 1, 1]);
+    expect(layersToCompare(three)).toHaveLength(3);
+    expect(layersToCompare(three.slice(1))).toEqual([]);
+    expect(layersToCompare([three[0]!, three[1]!, { ...three[2]!, weight: 0 }])).toEqual([]);
   });
 });

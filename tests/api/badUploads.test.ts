@@ -75,7 +75,7 @@ describe('a file that cannot be used is refused in one sentence and leaves nothi
     ['a zip that lies about its sizes', 'lies.zip', zipBomb, 'unsafe-archive', /lies\.zip/],
     ['a zip cut off', 'half.zip', () => writeZip({ 'a.shp': shapes.shp, 'a.shx': shapes.shx, 'a.dbf': shapes.dbf }).slice(0, 80), 'damaged', /half\.zip/],
     ['a shapefile without its shapes', 'noshp.zip', () => writeZip({ 'a.shx': shapes.shx, 'a.dbf': shapes.dbf }), 'missing-part', /no \.shp/],
-    ['a single part of a shapefile', 'alone.shp', () => shapes.shp, 'missing-part', /Pack all parts/],
+    ['a single part of a shapefile', 'alone.shp', () => shapes.shp, 'missing-part', /Send all parts with the same name together, or packed into one ZIP/],
     ['GeoJSON that is no JSON', 'broken.geojson', () => '{"type":"FeatureCollection","features":[', 'damaged', /broken\.geojson/],
     ['GeoJSON without shapes', 'none.geojson', () => '{"type":"FeatureCollection","features":[]}', 'no-layer', /no shapes/],
     ['a table of positions without a measurement', 'posts.csv', () => `lat,lon,note\n${[10, 20].map((x) => [...lonLatAt(x, x)].reverse().join(',')).map((at) => `${at},post`).join('\n')}\n`, 'no-values', /posts\.csv: It holds points without a number to map \(it has note\)\. Add a column/],

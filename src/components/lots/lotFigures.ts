@@ -75,3 +75,12 @@ export function tankChance(lot: LotView, tanks: readonly TankView[], lots: reado
   const others = load?.lots.filter(({ id }) => id !== lot.id).map(({ name }) => name) ?? [];
   return { chance: others.length > 0 ? load!.fit!.chanceOfFit : lot.summary.tank.chanceOfFit, tank: lot.summary.tank.name, others };
 }
+
+type Translate = (key: string, named?: Record<string, unknown>) => string;
+
+/** That chance in words, with the lots that go into the same tank. */
+export function tankWords(found: TankChance | null, { t, format }: { t: Translate; format: Format }): string {
+  if (found === null) return t('lots.noTank');
+  const { chance, tank, others } = found;
+  return t(others.length > 0 ? 'lots.fitsTogether' : 'lots.fitsIn', { chance: chanceText(chance, format), tank, others: format.list(others) });
+}

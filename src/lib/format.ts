@@ -34,7 +34,7 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
   const region = regions[language];
   const number = (value: number, decimals = 0) => numberText(value, decimals, region);
   const withUnit = (quantity: Quantity, stored: number, decimals = decimalsOf(quantity, units)) =>
-    `${number(shownValue(quantity, stored, units), decimals)}${thinSpace}${unitOf(quantity, units)}`;
+    `${number(shownValue(quantity, stored, units), decimals)}${thinSpace}${unitOf(quantity, units, language)}`;
 
   return {
     language,
@@ -46,7 +46,7 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
     withUnit,
     /** Figure alone, for a column whose head carries the unit. */
     figure: (quantity: Quantity, stored: number, decimals = decimalsOf(quantity, units)) => number(shownValue(quantity, stored, units), decimals),
-    unit: (quantity: Quantity) => unitOf(quantity, units),
+    unit: (quantity: Quantity) => unitOf(quantity, units, language),
     shown: (quantity: Quantity, stored: number) => shownValue(quantity, stored, units),
     plusMinus: (halfWidth: number, decimals = 1) => `±${thinSpace}${number(halfWidth, decimals)}`,
     estimate: (value: number, halfWidth: number, decimals = 1) => `${number(value, decimals)}${thinSpace}±${thinSpace}${number(halfWidth, decimals)}`,

@@ -15,6 +15,14 @@ export const quantities = {
 
 export type Quantity = keyof typeof quantities;
 
+/** Units that are words and not symbols; English stands in the table above. */
+const unitWords: Readonly<Record<string, Readonly<Record<string, string>>>> = {
+  'short tons': { es: 't cortas', fr: 't courtes', it: 't corte', pt: 't curtas' },
+  'tons/ac': { es: 't cortas/ac', fr: 't courtes/ac', it: 't corte/ac', pt: 't curtas/ac' },
+  'US gal': { es: 'gal EE. UU.', fr: 'gal US', it: 'gal US', pt: 'gal EUA' },
+  'US gal/ton': { es: 'gal EE. UU./t corta', fr: 'gal US/t courte', it: 'gal US/t corta', pt: 'gal EUA/t curta' },
+};
+
 const freezingF = 32;
 
 /** Value as shown: `shownValue('area', 1, 'us')` is 2.4710538. */
@@ -29,8 +37,10 @@ export function storedValue(quantity: Quantity, shown: number, system: UnitSyste
   return value / quantities[quantity][system][1];
 }
 
-export function unitOf(quantity: Quantity, system: UnitSystem): string {
-  return quantities[quantity][system][0];
+/** Name of the unit in a language. `unitOf('fruitMass', 'us', 'fr')` is "t courtes". */
+export function unitOf(quantity: Quantity, system: UnitSystem, language: string): string {
+  const name = quantities[quantity][system][0];
+  return unitWords[name]?.[language] ?? name;
 }
 
 export function decimalsOf(quantity: Quantity, system: UnitSystem): number {

@@ -44,6 +44,15 @@ describe('units', () => {
     expect(shownValue(quantity, stored, 'us')).toBeCloseTo(shown, 4);
   });
 
+  it('units that are words are in the reader\'s language', () => {
+    expect(french.withUnit('fruitMass', 0.9071847)).toBe(`1,0${thinSpace}t courtes`);
+    expect(createFormat({ language: 'en', units: 'us' }).unit('yield')).toBe('tons/ac');
+    for (const language of ['es', 'fr', 'it', 'pt'] as const) {
+      const { unit } = createFormat({ language, units: 'us' });
+      expect([unit('fruitMass'), unit('yield'), unit('volume'), unit('juice')].join('; ')).not.toMatch(/short|ton\b|tons|US gal/);
+    }
+  });
+
   it('one short ton an acre is 2.2417 t/ha', () => {
     expect(storedValue('yield', 1, 'us')).toBeCloseTo(2.2417, 4);
   });

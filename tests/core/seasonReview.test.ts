@@ -109,6 +109,14 @@ describe('the season letter', () => {
     expect(said('shared').join(' ')).not.toMatch(/yield/);
   });
 
+  it('gives short tons in the reader\'s words, apart from their figure', () => {
+    const line = { ...letter.block.measures[0]!, measure: 'yield', basis: 'weighed' as const, unit: 't/ha', difference: 2.2417, halfWidth: 0.22417, differ: true };
+    const said = (language: SeasonLetter['language']) => letterParts({ ...letter, language, units: 'us', block: { ...letter.block, measures: [line] } }).flat().join(' ');
+    expect(said('en')).toMatch(/24\.3 short tons came over the scale.* by 1\.0 ± 0\.1 tons\/ac:/);
+    expect(said('fr')).toMatch(/24,3 t courtes sont passées.* de 1,0 ± 0,1 t courtes\/ac :/);
+    for (const language of ['es', 'fr', 'it', 'pt'] as const) expect(said(language)).not.toMatch(/short|tons/);
+  });
+
   it('does not pretend to a test that was not made', () => {
     expect(letterParts({ ...letter, zones: [], errorParts: [] })[0]![0]).toBe('Nothing was weighed for this block, so the forecast was not tested.');
   });

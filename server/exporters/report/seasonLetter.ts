@@ -73,14 +73,14 @@ function weighedSentences(letter: SeasonLetter): string[] {
 function differenceText(letter: SeasonLetter, { measure, difference, halfWidth, unit }: ReviewView['blocks'][number]['measures'][number]): string {
   const isYield = measure === 'yield';
   const factor = isYield && letter.units === 'us' ? tonsPerAcre : 1;
-  const shownUnit = isYield && letter.units === 'us' ? 'tons/ac' : measure === 'ph' ? '' : ` ${unit}`;
+  const shownUnit = isYield && letter.units === 'us' ? ` ${seasonLetterTexts[letter.language].tonsPerAcre}` : measure === 'ph' ? '' : ` ${unit}`;
   const decimals = measure === 'ph' ? 2 : 1;
   return `${figure(letter, difference * factor, decimals)}${halfWidth === null ? '' : ` ± ${figure(letter, halfWidth * factor, decimals)}`}${shownUnit}`;
 }
 
 function tonnesText(letter: SeasonLetter, tonnes: number, half: number | null): string {
   const factor = letter.units === 'us' ? shortTons : 1;
-  return `${figure(letter, tonnes * factor, 1)}${half === null ? '' : ` ± ${figure(letter, half * factor, 1)}`} ${letter.units === 'us' ? 'short tons' : 't'}`;
+  return `${figure(letter, tonnes * factor, 1)}${half === null ? '' : ` ± ${figure(letter, half * factor, 1)}`} ${letter.units === 'us' ? seasonLetterTexts[letter.language].shortTons : 't'}`;
 }
 
 function figure({ language }: SeasonLetter, value: number, decimals: number): string {

@@ -1,6 +1,7 @@
 /** Sentences of the season letter by language. Translations need a native reader before release. */
 export const seasonLetterTexts = {
   en: {
+    shortTons: 'short tons', tonsPerAcre: 'tons/ac',
     title: 'Season letter: {block}',
     line: '{estate}, season {season}. Written on {day} from what was recorded.',
     expected: 'On {day} {forecast} were expected from the zones that were weighed; {actual} came over the scale. The range {held}.',
@@ -27,6 +28,7 @@ export const seasonLetterTexts = {
     caution: 'Estimates for planning. Not a contract weight, not a legal declaration. Scale tickets are copies; the legal original stays with the weigher.',
   },
   es: {
+    shortTons: 't cortas', tonsPerAcre: 't cortas/ac',
     title: 'Carta de campaña: {block}',
     line: '{estate}, campaña {season}. Escrita el {day} con lo que quedó anotado.',
     expected: 'El {day} se esperaban {forecast} de las zonas pesadas; {actual} pasaron por la báscula. El intervalo {held}.',
@@ -53,6 +55,7 @@ export const seasonLetterTexts = {
     caution: 'Estimaciones para planificar. No es peso de contrato ni declaración legal. Los boletines son copias; el original legal queda con quien pesa.',
   },
   fr: {
+    shortTons: 't courtes', tonsPerAcre: 't courtes/ac',
     title: 'Lettre de campagne : {block}',
     line: '{estate}, campagne {season}. Écrite le {day} d’après ce qui a été noté.',
     expected: 'Le {day}, {forecast} étaient attendues des zones pesées ; {actual} sont passées sur la bascule. L’intervalle {held}.',
@@ -79,6 +82,7 @@ export const seasonLetterTexts = {
     caution: 'Estimations pour planifier. Ni poids contractuel ni déclaration légale. Les bons sont des copies ; l’original légal reste au peseur.',
   },
   it: {
+    shortTons: 't corte', tonsPerAcre: 't corte/ac',
     title: 'Lettera di stagione: {block}',
     line: '{estate}, stagione {season}. Scritta il {day} da quanto annotato.',
     expected: 'Il {day} si attendevano {forecast} dalle zone pesate; {actual} sono passate sulla bilancia. L’intervallo {held}.',
@@ -105,6 +109,7 @@ export const seasonLetterTexts = {
     caution: 'Stime per pianificare. Non un peso di contratto, non una dichiarazione legale. Le bolle sono copie; l’originale legale resta a chi pesa.',
   },
   pt: {
+    shortTons: 't curtas', tonsPerAcre: 't curtas/ac',
     title: 'Carta de campanha: {block}',
     line: '{estate}, campanha {season}. Escrita a {day} com o que ficou registado.',
     expected: 'A {day} esperavam-se {forecast} das zonas pesadas; {actual} passaram na báscula. O intervalo {held}.',

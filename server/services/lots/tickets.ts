@@ -69,9 +69,9 @@ async function importIn(trx: Transaction, access: Access, file: z.infer<typeof t
   if (!file.apply) return view;
   if (read.questions.length > 0) throw new Clash('tableQuestions', say('tableQuestions'));
   if (read.problems.length > 0 || read.tickets.length === 0) throw new Unusable('tableProblems', say('tableProblems', { n: read.problems.length }));
-  const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time, netOnly }) => ({
+  const rows = read.tickets.map(({ lotId, ticketNo, gross, tare, unit, day, time }) => ({
     estateId, lotId, ticketNo, grossKg: gross * kgPerUnit[unit], tareKg: tare * kgPerUnit[unit], unitTyped: unit, split: [], corrects: null, enteredBy: access.personId, enteredAt: options.now,
-    note: netOnly ? 'net weight only' : '',
+    note: '',
     weighedAt: ScaleTicket.raw('(?::timestamp at time zone ?)', [`${day} ${time}`, estate.timeZone]),
   }));
   await ScaleTicket.query(trx).insert(rows as never);

@@ -26,3 +26,9 @@ export function pairZones(first: ArrayLike<number>, second: ArrayLike<number>): 
 export function vinesApart(first: ArrayLike<number>, second: ArrayLike<number>): number {
   return first.length - pairZones(first, second).reduce((sum, { vines }) => sum + vines, 0);
 }
+
+/** Whether a vine leaves its zone, when a zone that only got another number counts as the same; 0 is no zone. */
+export function leavesZone(first: ArrayLike<number>, second: ArrayLike<number>): (vine: number) => boolean {
+  const partner = new Map(pairZones(first, second).map(({ from, to }) => [from, to]));
+  return (vine) => (first[vine]! === 0 ? second[vine]! !== 0 : partner.get(first[vine]!) !== second[vine]!);
+}

@@ -134,12 +134,13 @@ export type ZoneEditLine = z.infer<typeof zoneEditLine>;
 
 export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int() });
 
-/** What publishing would touch. */
+/** What publishing would touch; a zone that only gets another number is in `renumbered`, and nothing of it counts as moved. */
 export const publishEffects = z.object({
   replaces: z.number().int().nullable(),
   readingsMoved: z.number().int(),
   readingsOutside: z.number().int(),
   vinesMoved: z.number().int(),
+  renumbered: z.array(z.object({ from: zoneNumber, to: zoneNumber })),
   openRounds: z.array(z.object({ id, onDate: z.string(), people: z.array(z.string()) })),
   plans: z.number().int(),
   lots: z.array(z.object({ id, name: z.string(), vinesMoved: z.number().int() })),

@@ -527,6 +527,16 @@ describe('publishing', () => {
     expect(swapped.pairs).toHaveLength(2);
   });
 
+  it('moves no vine by publishing zones that only got other numbers', async () => {
+    const live = await draft(2);
+    await publish(live);
+    const next = await draft(2);
+    await edit(next, { kind: 'renumber', numbers: [{ from: 1, to: 2 }, { from: 2, to: 1 }] });
+    const { body } = await manager.get(`${base()}/zonings/${next}/effects`);
+    expect(body).toMatchObject({ replaces: (await view(live)).number, vinesMoved: 0, readingsMoved: 0, lots: [] });
+    expect(body.renumbered).toEqual(expect.arrayContaining([{ from: 1, to: 2 }, { from: 2, to: 1 }]));
+  });
+
   it('counts the vines in doubt and draws where they stand', async () => {
     const zoningId = await zoned();
     const doubt = (await manager.get(`${base()}/zonings/${zoningId}/doubt?zones=4`)).body as ZoningDoubt;

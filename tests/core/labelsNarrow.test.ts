@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { withoutNarrow } from '../../shared/analysis/labelsNarrow.ts';
-import { pairZones, vinesApart } from '../../shared/analysis/zonePairs.ts';
+import { leavesZone, pairZones, vinesApart } from '../../shared/analysis/zonePairs.ts';
 import { seededRandom } from '../../shared/analysis/random.ts';
 import { rankStability } from '../../shared/analysis/rankStability.ts';
 import { seasonAgreement } from '../../shared/analysis/seasonAgreement.ts';
@@ -34,6 +34,8 @@ describe('zones of two maps', () => {
     expect(pairZones([1, 1, 1, 2, 2, 3], [2, 2, 1, 1, 1, 1])).toEqual([{ from: 1, to: 2, vines: 2 }, { from: 2, to: 1, vines: 2 }]);
     expect(vinesApart([1, 1, 2, 2], [2, 2, 1, 2])).toBe(1);
     expect(vinesApart([1, 1, 2, 2], [2, 2, 1, 1])).toBe(0);
+    const leaves = leavesZone([1, 1, 2, 2, 0, 0, 1], [2, 2, 1, 2, 0, 1, 0]);
+    expect([0, 1, 2, 3, 4, 5, 6].map(leaves)).toEqual([false, false, false, true, false, true, true]);
   });
 });
 

@@ -1,6 +1,6 @@
 import { adjustedRandIndex } from '../../../shared/analysis/agreement.ts';
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
-import { vinesApart } from '../../../shared/analysis/zonePairs.ts';
+import { leavesZone, pairZones, vinesApart } from '../../../shared/analysis/zonePairs.ts';
 import type { PublishEffects, ZoningComparison } from '../../../shared/contracts/zonings.ts';
 import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
@@ -23,20 +23,25 @@ import { lockZoning, requireSameOutline } from './editZones.ts';
 import { readLabels } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
-/** What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. */
+/**
+ * What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. A zone that
+ * only gets another number is named as such; its vines do not count as moved, as in a comparison of two versions.
+ */
 export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
   const { zoning, live, ground, before, after } = await loadBoth(access, zoningId);
   const readings = await zonedReadings(access.estateId, { ground, zoneOf: after, seasonId: zoning.seasonId });
   const inBlock = readings.filter((reading) => reading.vine >= 0);
+  const isMoved = leavesZone(before, after);
   const rounds = await Round.query().where({ estateId: access.estateId, blockId: zoning.blockId }).whereIn('state', ['sent', 'open']).orderBy('onDate');
   return {
     replaces: live?.number ?? null,
-    readingsMoved: live ? inBlock.filter((reading) => before[reading.vine] !== after[reading.vine]).length : 0,
+    readingsMoved: live ? inBlock.filter((reading) => isMoved(reading.vine)).length : 0,
     readingsOutside: readings.filter((reading) => reading.zone === 0).length,
-    vinesMoved: live ? moved(before, after) : 0,
+    vinesMoved: live ? [...after.keys()].filter(isMoved).length : 0,
+    renumbered: live ? pairZones(before, after).filter(({ from, to }) => from !== to).map(({ from, to }) => ({ from, to })) : [],
     openRounds: await peopleOf(access, rounds),
     plans: live ? await Plan.query().where({ estateId: access.estateId, zoningId: live.id }).whereNot({ state: 'closed' }).resultSize() : 0,
-    lots: live ? await lotsTouched(access, { zoning, ground, before, after }) : [],
+    lots: live ? await lotsTouched(access, { zoning, ground, isMoved }) : [],
     underFloor: await underFloor(access, { after, sampled: inBlock.map((reading) => reading.vine) }),
   };
 }
@@ -97,10 +102,6 @@ async function loadBoth(access: Access, zoningId: string): Promise<Both> {
   return { zoning, live, ground, after, before: live ? zonesOfVines(ground, live) : new Uint8Array(after.length) };
 }
 
-function moved(before: Uint8Array, after: Uint8Array): number {
-  return before.reduce((sum, zone, vine) => sum + (zone === after[vine] ? 0 : 1), 0);
-}
-
 async function peopleOf(access: Access, rounds: Round[]): Promise<PublishEffects['openRounds']> {
   const sent = await RoundPerson.query().where({ estateId: access.estateId }).whereIn('roundId', rounds.map((round) => round.id));
   const people = await Person.query().findByIds([...new Set(sent.map((row) => row.personId))]).select('id', 'name');
@@ -112,7 +113,7 @@ async function peopleOf(access: Access, rounds: Round[]): Promise<PublishEffects
 }
 
 /** Lots keep their vines whatever the zones are called; what changes is which zone those vines count for. */
-async function lotsTouched(access: Access, { zoning, ground, before, after }: Omit<Both, 'live'>): Promise<PublishEffects['lots']> {
+async function lotsTouched(access: Access, { zoning, ground, isMoved }: { zoning: Zoning; ground: BlockVines; isMoved: (vine: number) => boolean }): Promise<PublishEffects['lots']> {
   const runs = (await LotRowRun.query()
     .where('lot_row_runs.estateId', access.estateId)
     .join(`${LotPart.tableName} as part`, 'part.id', 'lot_row_runs.lotPartId')
@@ -122,7 +123,7 @@ async function lotsTouched(access: Access, { zoning, ground, before, after }: Om
     .where('part.blockId', zoning.blockId)
     .select('lot.id as lotId', 'lot.name as lotName', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as { lotId: string; lotName: string; rowId: string; from: number; to: number }[];
   return [...groupBy(runs, (run) => run.lotId).values()]
-    .map((own) => ({ id: own[0]!.lotId, name: own[0]!.lotName, vinesMoved: own.reduce((sum, run) => sum + movedInRun(ground, run, (vine) => before[vine] !== after[vine]), 0) }))
+    .map((own) => ({ id: own[0]!.lotId, name: own[0]!.lotName, vinesMoved: own.reduce((sum, run) => sum + movedInRun(ground, run, isMoved), 0) }))
     .filter((lot) => lot.vinesMoved > 0);
 }
 

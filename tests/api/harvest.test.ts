@@ -162,7 +162,7 @@ describe('scale tickets', () => {
   });
 
   it('keep their total when they are split', async () => {
-    const split = [{ blockId: block.blockId, zoneNumber: 1, kg: 4000, how: 'measured' }, { blockId: block.blockId, zoneNumber: 2, kg: 2000, how: 'shared' }];
+    const split = [{ blockId: block.blockId, zoneNumber: 1, kg: 4000, how: 'measured' }, { blockId: block.blockId, zoneNumber: null, kg: 2000, how: 'shared' }];
     const answer = await enter({ ticketNo: '4713', split });
     expect(answer.status).toBe(422);
     expect(answer.body.detail).toMatch(/6000 kg.*6100 kg/);

@@ -83,3 +83,25 @@ describe('whether zones mattered, by the scale', () => {
     }
   });
 });
+
+describe('a split that names ground outside its lot', () => {
+  it('is refused with the zones of the lot, and nothing is kept', async () => {
+    const { estateId, ownerId } = await app.addEstate('Outside the lot');
+    const shelf = await makeZonedBlock({ estateId, personId: ownerId }, { name: 'Shelf' });
+    const other = await makeZonedBlock({ estateId, personId: ownerId }, { name: 'Ridge' });
+    const maker = await app.as((await app.addPerson(estateId, 'winemaker')).email);
+    const own = `/api/estates/${estateId}`;
+    const lot = (await maker.post(`${own}/lots`, { name: 'First only' })).body.id as string;
+    await maker.write('put', `${own}/lots/${lot}/parts`).set('if-match', '"1"').send({ parts: [{ zoneId: shelf.zoneIds[0] }] });
+    const enter = (split: readonly object[]) => maker.post(`${own}/tickets`, { lotId: lot, ticketNo: 'T', gross: 11_000, tare: 3000, weighedAt: '2026-09-26T09:00:00Z', split });
+    const line = (blockId: string, zoneNumber: number | null) => ({ blockId, zoneNumber, kg: 8000, how: 'measured', by: 'scale' });
+    for (const [split, named] of [[[line(shelf.blockId, 2)], 'Shelf 2'], [[line(other.blockId, 1)], 'Ridge 1'], [[line(other.blockId, null)], 'Ridge']] as const) {
+      const refused = await enter(split);
+      expect([refused.status, refused.body.code]).toEqual([422, 'notOfLot']);
+      expect(refused.body.detail).toContain(`names ${named},`);
+      expect(refused.body.detail).toContain('In this lot today: Shelf 1.');
+    }
+    expect((await maker.get(`${own}/tickets`)).body.items).toEqual([]);
+    expect((await enter([line(shelf.blockId, null)])).status).toBe(201);
+  });
+});

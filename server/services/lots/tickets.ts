@@ -12,6 +12,7 @@ import { Person } from '../../models/Person.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { findScenario } from './board.ts';
+import { zonesInLot } from './zonesInLot.ts';
 import { say } from '../../sentences/say.ts';
 
 /** Kilograms by which a split may miss the net weight: rounding of bins. */
@@ -23,6 +24,7 @@ const splitToleranceKg = 1;
  */
 export async function enterTicket(access: Access, input: NewTicket, now: Date): Promise<{ id: string }> {
   const { estateId } = access;
+  await requireOfLot(estateId, input);
   return ScaleTicket.transaction(async (trx) => {
     await oneAtATime(trx, estateId);
     const lot = await Lot.query(trx).findOne({ estateId, id: input.lotId }).forUpdate().throwIfNotFound();
@@ -35,13 +37,27 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     if (!corrected && known.some((ticket) => ticket.ticketNo === input.ticketNo)) throw new Clash('ticketTwice', say('ticketTwice', { ticketNo: input.ticketNo }));
     const factor = kgPerUnit[input.unit];
     requireSplitAddsUp(input.split, (input.gross - input.tare) * factor);
-    const blocks = await Block.query(trx).where({ estateId }).findByIds(input.split.map((part) => part.blockId)).select('id');
-    if (input.split.some((part) => !blocks.some((block) => block.id === part.blockId))) throw new Unusable('noBlock', say('noBlock'));
     const ticket = await ScaleTicket.query(trx).insert({ estateId, lotId: lot.id, ticketNo: input.ticketNo, grossKg: input.gross * factor, tareKg: input.tare * factor, unitTyped: input.unit, weighedAt: new Date(input.weighedAt), split: input.split, corrects: input.corrects, note: input.note, enteredBy: access.personId, enteredAt: now } as never);
     if (lot.state !== 'picked') await lot.$query(trx).patch({ state: 'picked', version: lot.version + 1 });
     await writeAudit(trx, access, { action: corrected ? 'tickets.correct' : 'tickets.enter', subjectType: 'ticket', subjectId: ticket.id, subjectName: input.ticketNo, after: input, reason: input.note || null });
     return { id: ticket.id };
   });
+}
+
+/** Parts of a load name ground that its lot has vines on: any other would count for no zone. Read ahead of the transaction, which then holds one connection only. */
+async function requireOfLot(estateId: string, { lotId, split }: NewTicket): Promise<void> {
+  if (split.length === 0) return;
+  const lot = await Lot.query().findOne({ estateId, id: lotId }).throwIfNotFound();
+  const blocks = await Block.query().where({ estateId }).findByIds(split.map((part) => part.blockId)).select('id', 'name');
+  const ground = await zonesInLot(lot);
+  for (const { blockId, zoneNumber } of split) {
+    const block = blocks.find(({ id }) => id === blockId);
+    if (block === undefined) throw new Unusable('noBlock', say('noBlock'));
+    const own = ground.find((one) => one.blockId === blockId);
+    if (own && (zoneNumber === null || own.numbers.includes(zoneNumber))) continue;
+    const zones = ground.map(({ blockName, numbers }) => [blockName, numbers.join(', ')].join(' ').trim()).join('; ');
+    throw new Unusable('notOfLot', say('notOfLot', { part: [block.name, zoneNumber ?? ''].join(' ').trim(), lot: lot.name, zones: zones || '–' }));
+  }
 }
 
 /** Reads a weighbridge's table back; enters all of it when asked to and nothing is left to settle. */

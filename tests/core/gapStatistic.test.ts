@@ -46,20 +46,20 @@ describe('the gap statistic with uniform references', () => {
 
   it('of raw iris rises from one to four groups and is near 0.49 at three', () => {
     const random = seededRandom(11);
-    const logs = (points: PointTable) => [1, 2, 3, 4].map((k) => logPairDistances(points, fitKMeans(points, { k, random, restarts: 2 }).labels));
+    const logs = (points: PointTable) => [1, 2, 3, 4].map((k) => logPairDistances(points, fitKMeans(points, { k, random, restarts: 10 }).labels));
     const own = logs(iris);
     const gaps = meanOf(Array.from({ length: 500 }, () => logs(reference(random)))).map((mean, at) => mean - own[at]!);
-    // Written out in base R 4.2.2 (svd, kmeans with three starts, dist, 500 references): 0.0910, 0.3832, 0.4912 and 0.5379, standard errors 0.001.
-    [0.091, 0.3832, 0.4912, 0.5379].forEach((expected, at) => expect(Math.abs(gaps[at]! - expected)).toBeLessThan(0.006));
+    // Written out in base R 4.2.2 (svd, kmeans with 25 starts, dist, 1000 references). Standard errors 0.001 there and here; with two or three starts the figure for four is off by 0.003.
+    [0.0907, 0.3847, 0.4927, 0.5427].forEach((expected, at) => expect(Math.abs(gaps[at]! - expected)).toBeLessThan(0.006));
     expect(gaps).toEqual([...gaps].sort((a, b) => a - b));
   });
 
   it('of raw iris by squared distances, as the comparison with random fields counts, is what base R gives', () => {
     const random = seededRandom(12);
-    const logs = (points: PointTable) => logWithinShares(points, 2, random).logs;
+    const logs = (points: PointTable) => logWithinShares(points, 10, random).logs;
     const own = logs(iris);
     const gaps = meanOf(Array.from({ length: 200 }, () => logs(reference(random)))).map((mean, at) => mean - own[at]!);
     // The same in R: Gap(k) − Gap(1) for k = 2…5.
-    [0.5101, 0.794, 0.9275, 0.9747].forEach((expected, at) => expect(Math.abs(gaps[at]! - expected)).toBeLessThan(0.015));
+    [0.5139, 0.7978, 0.9255, 0.9671].forEach((expected, at) => expect(Math.abs(gaps[at]! - expected)).toBeLessThan(0.015));
   });
 });

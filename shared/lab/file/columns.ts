@@ -114,6 +114,8 @@ function columnMeasure(column: Column, asking: Asking): { measure: string; unit:
   const role = roleOfTitle(title, measures);
   const filled = cells.filter((cell) => !isBlank(cell));
   if (role.kind === 'measure') return withUnit(column, role, asking);
+  if (role.kind === 'foreign' && filled.length > 0) asking.say('foreignUnit', { title });
+  if (role.kind === 'foreign') return null;
   const numbers = filled.filter(looksNumeric).length;
   if (role.kind !== 'unknown' || filled.length === 0 || numbers < filled.length / 2) {
     if (filled.length > 0 && !title.startsWith('#')) asking.say('leftOutColumn', { title });
@@ -133,7 +135,9 @@ function withUnit({ title, cells, measures }: Column, role: { measure: string; u
   const figures = cells.map((cell) => roughly(cell)).filter((value) => !Number.isNaN(value));
   const fits = (unit: string) => figures.length === 0 || figures.filter((value) => isPlausible(measure, unit, value)).length >= mostly * figures.length;
   const told = role.unit ?? unitOfWord(title, measure.code);
-  if (told !== null && (fits(told) || !units.some(({ id }) => fits(id)))) return { measure: measure.code, unit: told };
+  // "1,820" mg/L may be thousands: a unit that the title names is doubted only when neither reading fits.
+  const fitsToldUnit = (unit: string) => fits(unit) || eitherFits(cells, measure, unit);
+  if (told !== null && (fitsToldUnit(told) || !units.some(({ id }) => fits(id)))) return { measure: measure.code, unit: told };
   // Degrees of Klosterneuburg look like degrees Brix, and only German titles mean them without saying so.
   const possible = units.filter(({ id }) => fits(id) && (id !== 'kmw' || told === 'kmw' || /zucker|most/i.test(title)));
   // Figures near 1.09 can be nothing but a gravity. Always asked: acidity, whose scales overlap, and grams a litre, which
@@ -154,4 +158,14 @@ function roughly(cell: RawCell): number {
   const figure = readFigure(cellText(cell), null);
   if (figure.kind === 'number') return figure.value;
   return figure.kind === 'ambiguous' ? figure.asDecimal : Number.NaN;
+}
+
+/** Most cells fit the unit, read with decimals or with thousands. */
+function eitherFits(cells: readonly RawCell[], measure: LabMeasure, unit: string): boolean {
+  const filled = cells.filter((cell) => !isBlank(cell));
+  const fitting = filled.filter((cell) => {
+    const figure = readFigure(cellText(cell), null);
+    return figure.kind === 'ambiguous' ? isPlausible(measure, unit, figure.asDecimal) || isPlausible(measure, unit, figure.asThousands) : isPlausible(measure, unit, roughly(cell));
+  });
+  return fitting.length >= mostly * filled.length;
 }

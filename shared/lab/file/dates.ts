@@ -1,4 +1,4 @@
-import { cellText } from './cells.ts';
+import { cellText, plainText } from './cells.ts';
 import type { RawCell } from './labFile.ts';
 import type { Asking } from './questions.ts';
 
@@ -21,6 +21,7 @@ export function readDates(cells: ReadonlyMap<number, RawCell>, within: { earlies
     const triple = parts && ([Number(parts[1]), Number(parts[2]), fullYear(Number(parts[3]))] as [number, number, number]);
     // A day that is none in either order tells nothing about the others.
     if (clear === null && triple && (dayOf(triple, 'dmy') ?? dayOf(triple, 'mdy')) !== null) open.set(line, triple);
+    else if (clear === null && cellText(cell) !== '') asking.say('dateUnread', { line, text: cellText(cell).slice(0, 40) });
   }
   if (open.size === 0) return found;
   const order = orderOf([...open.values()], within, asking);
@@ -37,10 +38,19 @@ function clearDate(cell: RawCell): string | null {
   const text = cellText(cell);
   const iso = /^(\d{4})[-/.](\d{1,2})[-/.](\d{1,2})/.exec(text);
   if (iso) return dayOf([Number(iso[3]), Number(iso[2]), Number(iso[1])], 'dmy');
+  const worded = /^(?:[a-z]{2,10}[.,]? )?(\d{1,2})(?:er|\.|st|nd|rd|th)?[ -](?:de |di )?([a-z]{3,10})[. -]+(?:de )?(\d{2}|\d{4})\b/.exec(plainText(text));
+  if (worded) return dayOf([Number(worded[1]), monthOf(worded[2]!), fullYear(Number(worded[3]))], 'dmy');
+  const monthFirst = /^([a-z]{3,10})[. ]+(\d{1,2})(?:st|nd|rd|th)?,? (\d{4})\b/.exec(plainText(text));
+  if (monthFirst) return dayOf([Number(monthFirst[2]), monthOf(monthFirst[1]!), Number(monthFirst[3])], 'dmy');
   // A spreadsheet's own count of days, when the cell lost its format.
   if (/^4\d{4}(\.\d+)?$/.test(text)) return new Date(spreadsheetStart + Math.floor(Number(text)) * dayMs).toISOString().slice(0, 10);
   return null;
 }
+
+/** First letters of the months in English, French, Spanish, Italian, Portuguese and German, without accents. */
+const months = [/^(ja|ene|gen)/, /^(fe)/, /^(ma[er]|mrz|marz)/, /^(av|ap|ab)/, /^(ma[iyg])/, /^(juin|jun|giu)/, /^(juil|jul|lug)/, /^(ao|au|ag)/, /^(se)/, /^(o[ckgu]t|ott)/, /^(no)/, /^(de|di|dez)/];
+/** 0 for a word that is no month. */
+const monthOf = (word: string) => months.findIndex((start) => start.test(word)) + 1;
 
 const fullYear = (year: number) => (year < 100 ? 2000 + year : year);
 
@@ -57,7 +67,7 @@ function orderOf(dates: readonly [number, number, number][], { earliest, today }
     asking.say('datesMixed');
     return null;
   }
-  const tomorrow = new Date(Date.parse(`${today}T00:00:00Z`) + dayMs).toISOString().slice(0, 10);
+  const tomorrow = dayAfter(today, 1);
   const fits = possible.filter((order) => dates.every((parts) => (earliest === null || dayOf(parts, order)! >= earliest) && dayOf(parts, order)! <= tomorrow));
   const [a, b, year] = dates.find(([day, month]) => day !== month) ?? dates[0]!;
   if (a === b) return 'dmy';
@@ -67,3 +77,17 @@ function orderOf(dates: readonly [number, number, number][], { earliest, today }
   }
   return asking.ask('dateOrder', { code: 'dateOrder', params: { example: `${a}/${b}/${year}` }, choices: ['dmy', 'mdy'] }) as Order | null;
 }
+
+/**
+ * Days of analysis that are still to come, or more than a day before the bag was closed: asked about once a file. Until it
+ * is answered, and when they are left out, these lines have no day.
+ */
+export function settleDays(days: ReadonlyMap<number, string>, { closedOn, today }: { closedOn: (line: number) => string | null; today: string }, asking: Asking): ReadonlyMap<number, string> {
+  const doubtful = [...days].filter(([line, day]) => day > dayAfter(today, 1) || day < dayAfter(closedOn(line) ?? '1990-01-02', -1));
+  if (doubtful.length === 0) return days;
+  const [line, day] = doubtful[0]!;
+  const answer = asking.ask('dateDoubt', { code: 'dateDoubt', params: { line, day, count: doubtful.length }, choices: ['leaveOut', 'keep'], suggestion: 'leaveOut' });
+  return answer === 'keep' ? days : new Map([...days].filter(([each]) => !doubtful.some(([line]) => line === each)));
+}
+
+const dayAfter = (day: string, days: number) => new Date(Date.parse(`${day}T00:00:00Z`) + days * dayMs).toISOString().slice(0, 10);

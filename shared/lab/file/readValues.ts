@@ -6,6 +6,7 @@ import type { LooseValue } from './columns.ts';
 import type { LabEntry, LabMeasure, RawCell } from './labFile.ts';
 import { inOwnUnit, isPlausible, isUsual } from './plausible.ts';
 import type { Asking } from './questions.ts';
+import { isForeignUnit } from './foreignUnits.ts';
 import { unitInCell } from './titles.ts';
 
 interface Reading {
@@ -123,6 +124,10 @@ function figureOf(value: LooseValue, { mark, reading, asking }: { mark: DecimalM
 
 /** The column's unit, or the cell's own where it names another one and somebody says so; null while that is open, or left out. */
 function unitOfCell({ line, title, cell, measure, unit }: LooseValue, written: string, { reading, asking }: { reading: Reading; asking: Asking }): string | null {
+  if (isForeignUnit(written, measure)) {
+    settled({ code: 'cellUnread', line, title, text: cellText(cell), canKeep: false }, reading, asking);
+    return null;
+  }
   const own = unitInCell(written, measure);
   if (own === null || own === unit) return unit;
   if (reading.settle) return reading.settle({ code: 'cellUnread', line, title, text: cellText(cell), canKeep: false }) === 'keep' ? unit : null;

@@ -1,10 +1,12 @@
 import { plainText } from './cells.ts';
+import { isForeignUnit } from './foreignUnits.ts';
 import type { LabMeasure } from './labFile.ts';
 
 /** What a column holds by its title. `unit: null` of a measure with several units means that the title does not say. */
 export type ColumnRole =
   | { readonly kind: 'measure'; readonly measure: string; readonly unit: string | null }
-  | { readonly kind: 'code' | 'date' | 'temperature' | 'ignored' | 'unknown' | 'unit' | 'value' };
+  /** `foreign`: a measure of ours in a unit that is not read here. */
+  | { readonly kind: 'code' | 'date' | 'temperature' | 'ignored' | 'foreign' | 'unknown' | 'unit' | 'value' };
 
 interface TitleRow {
   readonly pattern: RegExp;
@@ -41,6 +43,8 @@ const rows: readonly TitleRow[] = [
   { pattern: /oechsle|ochsle|°oe|\boe\b/, role: () => of('brix', 'oechsle') },
   { pattern: /\bsg\b|s\.g\.|\bd20|densi|dichte|masse vol|massa vol|peso espec|peso spec|specific grav|gravity/, role: () => of('brix', 'gravity') },
   { pattern: /sugar|sucre|azucar|zuccher|acucar|zucker|mostgew|\bsst\b|\btss\b|glucos|fructos|soluble sol|solidos|solidi sol/, role: () => of('brix', null) },
+  // Acidity told as malic acid is not malic acid.
+  { pattern: /(\bta\b|\batt?\b|(total|titr)\w* acid|acid\w* (total|titr)|gesamts).*(mali|apfels)|acid\w*.*\b(as|en|in|als|come|como|expr\w*|eq\w*)\b.*(mali|apfels)/, role: () => ({ kind: 'foreign' }) },
   { pattern: /mali[ckqe]|malico|apfels/, role: (title) => of('malic', /mg ?\/? ?l/.test(title) ? 'malicMgPerL' : 'malicGPerL') },
   { pattern: /\byan\b|assimil|asimil|nitrogen|azote|azoto|nitrogeno|\bnfa\b|\bapa\b|\bnaf\b/, role: (title) => of('yan', /(^|[^m])g ?\/ ?l/.test(title) ? 'gNPerL' : 'mgNPerL') },
   { pattern: /\bph\b/, role: () => of('ph', null) },
@@ -48,6 +52,8 @@ const rows: readonly TitleRow[] = [
   { pattern: /m(illi)?eq/, role: () => of('ta', 'meqPerL') },
   { pattern: /mmol/, role: () => of('ta', 'mmolPerL') },
   { pattern: /(tartar|tartri|weins|h2t|acid|saure|\bta\b|\bat\b).*(g ?\/ ?(100 ?ml|dl)\b)/, role: () => of('ta', 'tartaricGPer100mL') },
+  // The acid itself, measured apart, or the scale of all acids: only a person can say.
+  { pattern: /^(l ?(\(\+\))?[- ] ?)?(tartaric acid|(acide?|ac\.?) tartri\w*|(acido|ac\.?) tartari\w*|weinsaure)( ?[([].*| m?g ?\/ ?l)?$/, role: () => ({ kind: 'unknown' }) },
   { pattern: /tartar|tartri|\btart\b|weins|h2t|c4h6o6/, role: () => of('ta', 'tartaricGPerL') },
   { pattern: /acid|acidez|saure|\bta\b|\bat\b|\batt\b|\bact\b/, role: () => of('ta', null) },
   { pattern: /\bdate|fecha|\bdata\b|datum|\bdia\b|\bjour\b|^(analy[sz]ed|reported|collected|sampled|received)( on| at)?$/, role: () => ({ kind: 'date' }) },
@@ -65,13 +71,17 @@ const rows: readonly TitleRow[] = [
   { pattern: /^(value|result|resultat|resultado|risultato|valeur|valor|valore|wert|ergebnis|messwert)s?e?$/, role: () => ({ kind: 'value' }) },
 ];
 
+/** An acidity is titrated to an end point: "TA (g/L, pH 8.2)" is no pH. */
+const endpoint = /^(.*(?:acid|saure|titr|\bta\b|\batt?\b).*?)((?:to|at|bis|a|jusqu'a)? ?\bph ?[=:]? ?[78](?:[.,]\d)?(?!\d))(.*)$/;
+
 /** Example: "Acidité totale (g/L H2SO4)" → titratable acidity as sulphuric; "Acidez total" → titratable acidity, scale not told. */
 export function roleOfTitle(title: string, measures: readonly LabMeasure[]): ColumnRole {
-  const plain = plainText(title);
+  const plain = plainText(title).replace(endpoint, '$1$3');
   if (plain === '') return { kind: 'unknown' };
   const own = measures.find(({ name }) => name !== '' && plain.includes(plainText(name)));
   if (own) return of(own.code, null);
   const found = rows.find(({ pattern }) => pattern.test(plain))?.role(plain) ?? { kind: 'unknown' };
+  if (found.kind === 'measure' && isForeignUnit(plain, found.measure)) return { kind: 'foreign' };
   return found.kind === 'measure' && !measures.some(({ code }) => code === found.measure) ? ignored : found;
 }
 
@@ -90,6 +100,7 @@ export function unitInCell(word: string, measure: string): string | null {
 
 /** Unit words that stand alone, in a row of units or a column of units. */
 export function unitOfWord(word: string, measure: string): string | null {
-  const role = roleOfTitle(word, [{ code: measure, name: '', unit: '', decimals: 0, minimum: 0, maximum: 0 }]);
+  // Alone, the name of the acid is asked about; beside an acidity it is its scale.
+  const role = roleOfTitle(measure === 'ta' ? `ta ${word}` : word, [{ code: measure, name: '', unit: '', decimals: 0, minimum: 0, maximum: 0 }]);
   return role.kind === 'measure' && role.measure === measure ? role.unit : null;
 }

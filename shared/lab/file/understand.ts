@@ -1,7 +1,7 @@
 import { groupBy } from '../../groupBy.ts';
 import { looseValues } from './columns.ts';
 import { plainText } from './cells.ts';
-import { readDates } from './dates.ts';
+import { readDates, settleDays } from './dates.ts';
 import { settleHidden } from './hiddenCells.ts';
 import type { LabAnswers, LabEntry, LabSurroundings, RawLabFile, UnderstoodLabFile } from './labFile.ts';
 import { matchLabels, withoutMeans } from './labels.ts';
@@ -40,7 +40,9 @@ function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { 
   const labels = matchLabels(table.rows.filter(({ line }) => filled.has(line)).map(({ line, cells }) => ({ line, cell: cells[table.codeColumn] ?? null })), around.labels, asking);
   const sampled = loose.values.filter(({ line }) => labels.has(line));
   const values = mendMarks(settleColumns(sampled, asking), around.measures, asking);
-  const dates = readDates(new Map(loose.dateColumn === null ? [] : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null])), { earliest: earliestClosing(around, labels), today: around.today }, asking);
+  const days = readDates(new Map(loose.dateColumn === null ? [] : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null])), { earliest: earliestClosing(around, labels), today: around.today }, asking);
+  const closings = new Map(around.labels.map(({ code, closedOn }) => [code, closedOn]));
+  const dates = settleDays(days, { closedOn: (line) => closings.get(labels.get(line) ?? '') ?? null, today: around.today }, asking);
   if (loose.values.length === 0 && asking.questions.length === 0) asking.say('noResults');
   if (values === null) return { list: [], titles: table.titles };
   return { list: readValues(values, { measures: around.measures, labels, dates, temperatureColumn: loose.temperatureColumn, isFahrenheit: loose.isFahrenheit }, asking), titles: table.titles };

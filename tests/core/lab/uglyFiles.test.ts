@@ -50,6 +50,18 @@ describe('files of laboratories', () => {
     }
   });
 
+  it('give each line its day of analysis, in words of any of the languages, and none that is in doubt', async () => {
+    const daysOf = async (cells: readonly string[], answers: Record<string, string> = {}) => {
+      const raw = await readLabBytes(new Uint8Array(Buffer.from(`Sample;Date;Brix\n${cells.map((cell, at) => `${labels[at]};${cell};22,1`).join('\n')}\n`, 'utf8')));
+      return understandLabFile(raw, around, answers).entries.map(({ analysedOn }) => analysedOn);
+    };
+    expect(await daysOf(['3 sept. 2026', '3 settembre 2026', '3. Sep 2026', '3 de septiembre de 2026'])).toEqual(Array.from({ length: 4 }, () => '2026-09-03'));
+    expect(await daysOf(['1er septembre 2026', '3 set 2026', 'September 3rd, 2026', 'jeu. 3 sept 26'])).toEqual(['2026-09-01', '2026-09-03', '2026-09-03', '2026-09-03']);
+    const doubtful = ['2026-10-04', '2026-08-20', '2026-09-04'];
+    expect(await daysOf(doubtful)).toEqual([null, null, '2026-09-04']);
+    expect(await daysOf(doubtful, { dateDoubt: 'keep' })).toEqual(doubtful);
+  });
+
   it('that are no tables are refused with the way out', async () => {
     const text = (content: string) => readLabBytes(new Uint8Array(Buffer.from(content, 'latin1')));
     await expect(text('%PDF-1.7 …')).rejects.toThrow(/PDF.*type the results in/);

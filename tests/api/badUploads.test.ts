@@ -217,11 +217,22 @@ describe('a file that is doubtful is asked about, never guessed', () => {
     expect(answer.body.items[0].understood.layers[0].fields[0].name).toBe('name');
   });
 
-  it('an estate without blocks says that blocks come first', async () => {
+  it('a picture sent before there are blocks waits for them, and is placed once there is one', async () => {
     const other = await app.addEstate('New Ground');
     const owner = await app.as(other.ownerEmail);
-    const answer = await owner.write('post', `/api/estates/${other.estateId}/imports`).attach('files', Buffer.from(picture()), 'early.tif');
-    expect(answer.body.detail).toMatch(/no blocks yet/);
+    const otherBase = `/api/estates/${other.estateId}`;
+    const sent = await owner.write('post', `${otherBase}/imports`).attach('files', Buffer.from(picture()), 'early_ndvi.tif');
+    expect(sent.status, sent.text).toBe(201);
+    const { id, notes } = sent.body.items[0];
+    expect(notes).toEqual([expect.objectContaining({ code: 'waits-for-block' })]);
+    const answers = { purpose: 'vigour', holds: 'ndvi', capturedOn: null, alleys: 'bare', growthStage: 'unknown', canopy: 'all' };
+    const tooEarly = await owner.patch(`${otherBase}/imports/${id}`, { answers });
+    expect([tooEarly.status, tooEarly.body.detail]).toEqual([422, expect.stringMatching(/no blocks yet.*Make a block first/)]);
+    const made = await owner.post(`${otherBase}/blocks`, { name: 'First Piece', boundary: rectangle() });
+    const placed = await owner.patch(`${otherBase}/imports/${id}`, { answers });
+    expect(placed.body).toMatchObject({ state: 'ready', notes: [] });
+    expect(await jobEnd(owner, otherBase, placed.body.jobId)).toMatchObject({ state: 'done' });
+    expect((await owner.get(`${otherBase}/blocks/${made.body.id}/layers`)).body.total).toBe(1);
   });
 });
 

@@ -15,7 +15,7 @@ import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { withCompanions, type Accompanied } from './companions.ts';
 import { viewsOf } from './view.ts';
-import { blocksUnder, estatePlace } from './whereabouts.ts';
+import { blocksUnder, estatePlace, hasBlocks } from './whereabouts.ts';
 import { say } from '../../sentences/say.ts';
 
 const longestName = 255;
@@ -61,18 +61,19 @@ async function receiveOne(access: Access, received: Received): Promise<FileImpor
   }
 }
 
-/** A picture that lies over no block, and has no other place it could be meant for, is of no use here. */
+/** A picture that lies over no block, and has no other place it could be meant for, is of no use here. Before there are blocks it waits for them. */
 async function requireMeeting(access: Access, fileName: string, described: Described): Promise<void> {
   const { file, questions } = described;
   const mayMove = questions.some((question) => question.code === 'reference' || (question.code === 'placement' && question.choices.length > 1));
-  if (file.kind === 'raster' && file.outlineLonLat !== null && !mayMove) await requireOverBlocks(access.estateId, fileName, file.outlineLonLat);
+  if (file.kind !== 'raster' || file.outlineLonLat === null || mayMove) return;
+  if (await hasBlocks(access.estateId)) await requireOverBlocks(access.estateId, fileName, file.outlineLonLat);
 }
 
 /** Throws ImportProblem with the distance when an outline touches no block of the estate. */
 export async function requireOverBlocks(estateId: string, fileName: string, outline: readonly (readonly [number, number])[]): Promise<void> {
   const { covers, nearestKm } = await blocksUnder(estateId, outline);
   if (covers.length > 0) return;
-  if (nearestKm === null) throw new ImportProblem({ code: 'not-overlapping', fact: 'This estate has no blocks yet that it could lie on.', remedy: 'Make a block first, then send the file again.', params: { why: 'no-blocks-yet' }, file: fileName });
+  if (nearestKm === null) throw new ImportProblem({ code: 'not-overlapping', fact: 'This estate has no blocks yet that it could lie on.', remedy: 'Make a block first, then confirm here.', params: { why: 'no-blocks-yet' }, file: fileName });
   const shown = nearestKm < 10 ? Math.max(0.1, nearestKm).toFixed(1) : String(Math.round(nearestKm));
   throw new ImportProblem({
     code: 'not-overlapping',

@@ -1,6 +1,6 @@
 import { layerTypeIds } from '../../../shared/catalog/layerTypes.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
-import type { ImportQuestion, ImportView } from '../../../shared/contracts/imports.ts';
+import type { ImportNote, ImportQuestion, ImportView } from '../../../shared/contracts/imports.ts';
 import { importQuestions } from '../../../shared/importing/questions.ts';
 import type { Access } from '../../access/access.ts';
 import { FileImport, type ImportMemory } from '../../models/FileImport.ts';
@@ -8,9 +8,10 @@ import { Job } from '../../models/Job.ts';
 import { Layer } from '../../models/Layer.ts';
 import { Person } from '../../models/Person.ts';
 import { StoredFile } from '../../models/StoredFile.ts';
-import { blocksUnder, type Covered } from './whereabouts.ts';
+import { blocksUnder, hasBlocks, type Covered } from './whereabouts.ts';
 
 const most = 200;
+const waitsForBlock: ImportNote = { code: 'waits-for-block', text: 'There is no block yet that it could lie on. It waits here until there is one.', params: {} };
 
 /** Lines of the import desk, newest first. */
 export async function listImports(access: Access): Promise<ImportView[]> {
@@ -33,6 +34,7 @@ export async function viewsOf(access: Access, records: FileImport[]): Promise<Im
   const layers = groupBy(await Layer.query().where({ estateId }).whereIn('importId', ids).whereNull('retiredAt').select('id', 'importId', 'type', 'name'), (layer) => layer.importId);
   const jobs = new Map((await Job.query().where({ estateId, subjectType: 'import' }).whereIn('subjectId', ids).orderBy('createdAt').select('id', 'subjectId', 'state')).map((job) => [job.subjectId, job]));
   const covers = await coversOf(estateId, records);
+  const isBare = records.some(isPictureInHand) && !(await hasBlocks(estateId));
   return records.map((record) => {
     const file = files.find((each) => each.id === record.fileId);
     return {
@@ -47,7 +49,7 @@ export async function viewsOf(access: Access, records: FileImport[]): Promise<Im
       state: record.state === 'ready' && jobs.get(record.id)?.state === 'cancelled' ? 'asks' : record.state,
       understood: record.state === 'done' ? withoutSample(record.understood.file) : record.understood.file,
       questions: record.state === 'refused' && record.fileId === null ? [] : questionsOf(record).map(settledBare),
-      notes: record.warnings,
+      notes: isBare && isPictureInHand(record) ? [...record.warnings, waitsForBlock] : record.warnings,
       problem: record.problem,
       covers: covers.get(record.id) ?? [],
       outlines: record.understood.outlines,
@@ -57,6 +59,11 @@ export async function viewsOf(access: Access, records: FileImport[]): Promise<Im
       createdAt: record.createdAt.toISOString(),
     };
   });
+}
+
+/** A raster that was neither placed nor refused. */
+function isPictureInHand(record: FileImport): boolean {
+  return record.state === 'asks' && record.understood.file?.kind === 'raster';
 }
 
 /** What the reader asked, then what follows from the file and the answers so far. */

@@ -24,6 +24,11 @@ export async function estatePlace(estateId: string): Promise<LonLat | null> {
   return lon === null || lat === null ? null : [lon, lat];
 }
 
+/** Whether the estate has any block that is in use. */
+export async function hasBlocks(estateId: string): Promise<boolean> {
+  return (await Block.query().where({ estateId }).whereNull('retiredAt').select('id').first()) !== undefined;
+}
+
 /** Blocks that an outline touches, and how far the nearest block is from it; null kilometres when there are no blocks. */
 export async function blocksUnder(estateId: string, outline: readonly (readonly [number, number])[]): Promise<{ covers: Covered[]; nearestKm: number | null }> {
   const ring = JSON.stringify({ type: 'Polygon', coordinates: [outline] });

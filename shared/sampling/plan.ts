@@ -78,8 +78,15 @@ function secondsMoreIn({ zones }: PlanBasis, { zoneSeconds }: PlanChoices, membe
   return inPool.reduce((sum, zone) => sum + (zone.vines / vines) * (zoneSeconds[String(zone.number)] ?? 0), 0);
 }
 
+/** Of a question, what time at a vine follows from. */
+export interface TimesAtVine {
+  readonly zones: readonly Pick<PlanQuestion['zones'][number], 'zone' | 'secondsMore'>[];
+  readonly measures: readonly Pick<PlanMeasure, 'code' | 'secondsPerSample'>[];
+  readonly effort: Pick<PlanQuestion['effort'], 'secondsPerVine'>;
+}
+
 /** Seconds at a vine of each zone, as they are sampled, for the measures taken there. */
-export function secondsAtVine({ zones, measures, effort }: PlanQuestion): (zone: number, codes: readonly string[]) => number {
+export function secondsAtVine({ zones, measures, effort }: TimesAtVine): (zone: number, codes: readonly string[]) => number {
   const more = new Map(zones.map(({ zone, secondsMore = 0 }) => [Number(zone), secondsMore]));
   const perSample = new Map(measures.map(({ code, secondsPerSample }) => [code, secondsPerSample]));
   return (zone, codes) => effort.secondsPerVine + (more.get(zone) ?? 0) + codes.reduce((sum, code) => sum + (perSample.get(code) ?? 0), 0);

@@ -130,6 +130,16 @@ describe('a plan', () => {
     expect(one.walk!.lengthM).toBeGreaterThan(500);
   });
 
+  it('draws many vines in a thread: as many as asked for, the same from the same seed, with the walk past them', async () => {
+    const many = { measures: [{ ...clusters, margin: 0.04 }], minimum: 100, seed: 11 };
+    const [one, again] = [await plan(many), await plan(many)];
+    expect(one.targets.length).toBeGreaterThan(250);
+    expect(one.targets).toHaveLength(one.draw.reduce((sum, { wanted }) => sum + wanted, 0));
+    expect(again.targets.map(({ rowId, ordinal, walkOrder }) => [rowId, ordinal, walkOrder])).toEqual(one.targets.map(({ rowId, ordinal, walkOrder }) => [rowId, ordinal, walkOrder]));
+    expect(one.walk!.serviceS).toBeCloseTo(one.targets.length * (one.choices.secondsPerVine + one.basis.measures.find(({ code }) => code === 'clusterCount')!.secondsPerSample), 6);
+    expect(one.walk!.lengthM).toBeGreaterThan(1000);
+  });
+
   it('never draws a missing, replanted or off-type vine', async () => {
     const marked = place.rows.slice(0, 16).flatMap((row) => Array.from({ length: 83 }, (_, i) => i + 1).filter((ordinal) => ordinal % 4 !== 0).map((ordinal) => ({ estateId: estate.estateId, blockId: place.blockId, rowId: row.id, ordinal, state: 'missing' as const, proposed: false, notedAt: new Date() })));
     await Vine.query().insert(marked);

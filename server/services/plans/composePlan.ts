@@ -3,21 +3,26 @@ import type { Labels } from '../../../shared/analysis/grid.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
-import { drawPlan, MOST_TARGETS, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
+import { MOST_TARGETS, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
 import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
-import { answerPlan, secondsAtVine, type PlanAnswer } from '../../../shared/sampling/plan.ts';
+import { answerPlan, type PlanAnswer, type TimesAtVine } from '../../../shared/sampling/plan.ts';
+import type { PlanQuestion } from '../../../shared/sampling/planQuestion.ts';
 import { headOf } from '../../../shared/sampling/pooledZones.ts';
-import { pacedGround } from '../../../shared/sampling/terrain.ts';
 import { walksAsLaid } from '../../../shared/sampling/walkEstimate.ts';
 import { Unusable } from '../../errors.ts';
 import { gridOf } from '../../ground/blockVines.ts';
+import { drawVines, type DrawInput } from '../../ground/drawVines.ts';
 import { loadTerrain } from '../../ground/terrain.ts';
 import { say } from '../../sentences/say.ts';
+import { runCompute } from '../../workers/computePool.ts';
 import { loadPlanBasis } from './planBasis.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
 /** Version of the calculation; stored with each plan, so that it can be told which one made it. */
 export const planEngine = 'plan-1';
+
+/** The exact walk past more vines than this takes tenths of a second, which other people's requests would wait for; fewer are sooner drawn here than in a thread. */
+const drawnHere = 250;
 
 export interface ComposedPlan {
   choices: PlanChoices;
@@ -36,18 +41,27 @@ export async function composePlan(estateId: string, zoningId: string, made: { ch
   const { visits } = answer.counts;
   if (visits > MOST_TARGETS) throw new Unusable('tooManyVines', say('tooManyToDraw', { n: visits, most: MOST_TARGETS }));
   const { ground, unusable, gateXY } = planGround;
-  const draw = drawPlan({
-    rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, ground: pacedGround(choices.pace, terrain),
+  const input: DrawInput = {
+    rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, pace: choices.pace, terrain, times: timesOf(answer.question),
     wanted: answer.counts.zones.map(({ zone, visits, counts }) => ({ zone: Number(zone), visits, counts })),
     measures: answer.question.measures.map(({ code }) => code),
-    secondsAt: secondsAtVine(answer.question),
     reserveShare: choices.reserveShare,
     seed: made.seed,
-  });
+  };
+  const draw = visits > drawnHere ? await runCompute<PlanDraw>('drawVines', input, { lane: 'quick' }) : drawVines(input);
   // From here on the walk's time is that of the vines drawn, also when somebody looks what other margins would cost.
   const walks = walksAsLaid(basis.walks, { vines: draw.targets.length, walkingS: draw.walkingS }, choices.pace);
   const laid = { ...basis, walks, isWalkLaid: walks.length > 0 && draw.targets.length > 0 };
   return { choices, planGround, basis: laid, answer: answerPlan(laid, choices), draw };
+}
+
+/** A question estimates walks with a function, which cannot cross to a thread. */
+function timesOf({ zones, measures, effort }: PlanQuestion): TimesAtVine {
+  return {
+    zones: zones.map(({ zone, secondsMore }) => ({ zone, ...(secondsMore === undefined ? {} : { secondsMore }) })),
+    measures: measures.map(({ code, secondsPerSample }) => ({ code, secondsPerSample })),
+    effort: { secondsPerVine: effort.secondsPerVine },
+  };
 }
 
 /** Zones as they are sampled: those of a pool are one, and the border between them is none. */

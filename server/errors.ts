@@ -112,7 +112,7 @@ const table = [
   row(AnalysisError, 422, 'Cannot be computed', (error, language) => ({ code: error.code, detail: computationWords(language, error.message) })),
   row(ZodError, 422, 'Cannot be used', inputAnswer),
   row(NotFoundError, 404, 'Not found', () => ({ code: 'notFound', detail: say('nothingHere') })),
-  row(UniqueViolationError, 409, 'Clash', (error) => ({ code: 'taken', detail: say('takenAlready', { what: error.columns.filter((column) => column !== 'estate_id').join(', ') || say('aName') }) })),
+  row(UniqueViolationError, 409, 'Clash', (error) => ({ code: 'taken', detail: say('takenAlready', { what: takenWords(error.columns) }) })),
   row(ForeignKeyViolationError, 409, 'Clash', () => ({ code: 'stillUsed', detail: say('stillUsed') })),
   row(MulterError, 422, 'Cannot be used', (error) =>
     error.code === 'LIMIT_FILE_SIZE' ? { code: 'fileTooLarge', detail: say('fileTooLarge') } : { code: 'badUpload', detail: say('badUpload', { why: error.message }) },
@@ -123,6 +123,12 @@ const exclusionViolation = '23P01';
 const deadlock = '40P01';
 /** Text with the character NUL, in a column of text or of JSON: PostgreSQL keeps neither. */
 const unstorableText = new Set(['22021', '22P05']);
+
+/** What of a person's input is taken: never the columns that only say whose it is. */
+function takenWords(columns: readonly string[]): Sentence | string {
+  const own = columns.map((column) => column.replace(/^lower\((.+)\)$/, '$1')).filter((column) => !column.endsWith('_id') && column !== 'name');
+  return own.join(', ') || say('aName');
+}
 
 /** Turns anything thrown into one reply shape, in a language. Unknown errors give a fixed sentence: their own words stay in the log. */
 export function problemOf(error: unknown, language: Language = 'en'): Problem {

@@ -83,6 +83,7 @@ export const en = {
   liveNotDeleted: 'The lots in force cannot be deleted as a whole. Delete the lots one by one.',
   nothingFree: 'Every zone is in a lot already. Ask to start over, or take zones out of their lots first.',
   noTankFree: 'No tank is free. Add tanks, or choose others.',
+  tankFill: 'The least fill of tank {tank} must be below the fill allowed. Lower the one or raise the other.',
   nothingFits: 'No lot can be made within these limits, so nothing was stored. Choose larger tanks or a smaller chance of fit, give a day more room, widen the targets, or split large zones by rows.',
   notFoundInTime: 'No proposal was found in {seconds} seconds, so nothing was stored. Ask again with fewer tanks, fewer varieties that may meet, or narrower targets.',
   ticketOfWhatIf: 'A ticket belongs to a lot in force, not to a what-if.',

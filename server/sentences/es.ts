@@ -84,6 +84,7 @@ export const es: Record<SentenceKey, string> = {
   liveNotDeleted: 'Los lotes vigentes no se pueden borrar todos a la vez. Bórrelos uno a uno.',
   nothingFree: 'Todas las zonas están ya en un lote. Pida empezar de nuevo o saque antes zonas de sus lotes.',
   noTankFree: 'No hay ningún depósito libre. Añada depósitos o elija otros.',
+  tankFill: 'El llenado mínimo del depósito {tank} debe ser menor que el llenado admitido. Baje uno o suba el otro.',
   nothingFits: 'Con estos límites no se puede hacer ningún lote y no se guardó nada. Elija depósitos mayores o una probabilidad menor de que quepa, dé más capacidad a un día, amplíe los objetivos o divida por hileras las zonas grandes.',
   notFoundInTime: 'No se halló ninguna propuesta en {seconds} segundos y no se guardó nada. Pídala otra vez con menos depósitos, menos variedades que puedan juntarse u objetivos más estrechos.',
   ticketOfWhatIf: 'Un boletín pertenece a un lote vigente, no a una hipótesis.',

@@ -84,6 +84,7 @@ export const fr: Record<SentenceKey, string> = {
   liveNotDeleted: 'Les lots en vigueur ne peuvent pas être supprimés ensemble. Supprimez-les un par un.',
   nothingFree: 'Chaque zone est déjà dans un lot. Demandez de repartir à neuf, ou retirez d’abord des zones de leurs lots.',
   noTankFree: 'Aucune cuve n’est libre. Ajoutez des cuves, ou choisissez-en d’autres.',
+  tankFill: 'Le remplissage minimal de la cuve {tank} doit être au-dessous du remplissage admis. Baissez l’un ou relevez l’autre.',
   nothingFits: 'Aucun lot n’est possible dans ces limites ; rien n’a été enregistré. Choisissez des cuves plus grandes ou une moindre chance de tenir, donnez plus de place à un jour, élargissez les objectifs, ou partagez de grandes zones par rangs.',
   notFoundInTime: 'Aucune proposition trouvée en {seconds} secondes ; rien n’a été enregistré. Redemandez avec moins de cuves, moins de cépages qui peuvent aller ensemble, ou des objectifs plus étroits.',
   ticketOfWhatIf: 'Un bon de pesée va à un lot en vigueur, pas à une hypothèse.',

@@ -84,6 +84,7 @@ export const it: Record<SentenceKey, string> = {
   liveNotDeleted: 'I lotti in vigore non si possono eliminare tutti insieme. Eliminarli uno per uno.',
   nothingFree: 'Ogni zona è già in un lotto. Chiedere di ricominciare o togliere prima zone dai loro lotti.',
   noTankFree: 'Nessuna vasca è libera. Aggiungere vasche o sceglierne altre.',
+  tankFill: 'Il riempimento minimo della vasca {tank} deve essere sotto il riempimento ammesso. Abbassare l’uno o alzare l’altro.',
   nothingFits: 'Entro questi limiti non si può fare alcun lotto; nulla è stato registrato. Scegliere vasche più grandi o una minore probabilità che il lotto ci stia, dare più spazio a un giorno, allargare gli obiettivi o dividere per filari le zone grandi.',
   notFoundInTime: 'Nessuna proposta trovata in {seconds} secondi; nulla è stato registrato. Chiedere di nuovo con meno vasche, meno varietà che possono stare insieme o obiettivi più stretti.',
   ticketOfWhatIf: 'Una bolletta di pesata va a un lotto in vigore, non a un’ipotesi.',

@@ -84,6 +84,7 @@ export const pt: Record<SentenceKey, string> = {
   liveNotDeleted: 'Os lotes em vigor não podem ser apagados todos de uma vez. Apague-os um a um.',
   nothingFree: 'Todas as zonas já estão num lote. Peça para começar de novo ou tire primeiro zonas dos seus lotes.',
   noTankFree: 'Nenhuma cuba está livre. Junte cubas ou escolha outras.',
+  tankFill: 'O enchimento mínimo da cuba {tank} tem de ser menor do que o admitido. Baixe um ou suba o outro.',
   nothingFits: 'Com estes limites não se pode fazer nenhum lote; nada foi guardado. Escolha cubas maiores ou uma probabilidade menor de caber, dê mais capacidade a um dia, alargue os objetivos ou divida por bardos as zonas grandes.',
   notFoundInTime: 'Não se encontrou nenhuma proposta em {seconds} segundos; nada foi guardado. Peça de novo com menos cubas, menos castas que se possam juntar ou objetivos mais estreitos.',
   ticketOfWhatIf: 'Um talão pertence a um lote em vigor, não a uma hipótese.',

@@ -27,3 +27,11 @@ export const lineGeometry = z.object({ type: z.literal('LineString'), coordinate
 
 /** Longitude and latitude in degrees, WGS 84. */
 export const lonLat = z.tuple([z.number().min(-180).max(180), z.number().min(-90).max(90)]);
+
+type Changes<Shape extends z.ZodRawShape> = { [Key in keyof Shape]: z.ZodOptional<Shape[Key] extends z.ZodDefault<infer Inner> ? Inner : Shape[Key]> };
+
+/** Any of the fields of an object and nothing of the rest: unlike with `partial()`, a field that was not sent is not filled with its starting value. */
+export function changesOf<Shape extends z.ZodRawShape>(whole: z.ZodObject<Shape>): z.ZodObject<Changes<Shape>> {
+  const fields = Object.entries(whole.shape).map(([key, field]) => [key, z.optional(field instanceof z.ZodDefault ? field.unwrap() : field)]);
+  return z.object(Object.fromEntries(fields) as Changes<Shape>);
+}

@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { phaseIds } from '../season/phases.ts';
 import { brixMethods } from './lots.ts';
-import { id, isoDate, language, pointGeometry, shortName, units } from './common.ts';
+import { changesOf, id, isoDate, language, pointGeometry, shortName, units } from './common.ts';
 
 /** Numbers an estate sets for itself; each has a stated starting value. */
 export const estateSettings = z.object({
@@ -41,7 +41,7 @@ export const newEstate = z.object({
 });
 export type NewEstate = z.infer<typeof newEstate>;
 
-export const estateChange = newEstate.partial().extend({ settings: estateSettings.omit({ alcoholMethod: true }).partial().optional() });
+export const estateChange = changesOf(newEstate).extend({ settings: changesOf(estateSettings.omit({ alcoholMethod: true })).optional() });
 
 /** What the owner is shown of backups: when the last good one was made, and when one was last read back for a trial. */
 export const backupView = z.object({ lastAt: z.string().nullable(), rows: z.int(), files: z.int(), drillAt: z.string().nullable(), drillOk: z.boolean().nullable() });

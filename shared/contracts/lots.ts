@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { id, isoDate, shortName } from './common.ts';
+import { changesOf, id, isoDate, shortName } from './common.ts';
 import { suggestionView } from './suggestions.ts';
 
 export const wineTypes = ['red', 'white', 'rose'] as const;
@@ -135,8 +135,9 @@ export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds:
 export const zoneMove = z.object({ zoneId: id, fromLotId: id, fromVersion: z.number().int(), toLotId: id, toVersion: z.number().int() });
 
 const litres = z.number().positive('Litres must be above 0.').max(2_000_000);
-export const newTank = z.object({ name: shortName, litres, workingFill: z.number().gt(0).max(1).default(0.8), minimumFill: z.number().min(0).lt(1).default(0.5) });
-export const tankChange = newTank.partial();
+const tankFacts = z.object({ name: shortName, litres, workingFill: z.number().gt(0).max(1).default(0.8), minimumFill: z.number().min(0).lt(1).default(0.5) });
+export const newTank = tankFacts.refine(({ workingFill, minimumFill }) => minimumFill < workingFill, { path: ['minimumFill'], message: 'The least fill must be below the fill allowed.' });
+export const tankChange = changesOf(tankFacts);
 export const newScenario = z.object({ name: shortName, copyOf: id });
 
 /** What can be picked and pressed on a day; without a day, on every day that has no line of its own. */

@@ -1,7 +1,7 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
 import type { z } from 'zod';
-import type { BrixMethod, CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank } from '../../shared/contracts/lots.ts';
+import type { BrixMethod, CapacityView, dayCapacity, DecisionView, lotChange, LotsBoard, LotView, newLot, newTank, tankChange } from '../../shared/contracts/lots.ts';
 import type { newSuggestion } from '../../shared/contracts/suggestions.ts';
 import { http } from '../lib/http.ts';
 import { inOrder } from '../lib/inOrder.ts';
@@ -119,10 +119,15 @@ export const useLotsStore = defineStore('lots', () => {
     await again();
   }
 
+  async function changeTank(tankId: string, change: z.input<typeof tankChange>): Promise<void> {
+    await http.patch(`${base()}/tanks/${tankId}`, change);
+    await again();
+  }
+
   async function retireTank(tankId: string): Promise<void> {
     await http.delete(`${base()}/tanks/${tankId}`);
     await again();
   }
 
-  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, reopen, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, chooseAlcohol, loadDecisions, addTank, retireTank };
+  return { board, compared, capacities, decisions, load, create, change, setParts, move, confirm, reopen, remove, copyScenario, suggest, applyScenario, removeScenario, compare, loadCapacities, setCapacity, chooseAlcohol, loadDecisions, addTank, changeTank, retireTank };
 });

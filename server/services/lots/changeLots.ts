@@ -138,6 +138,7 @@ export async function changeTank(access: Access, tankId: string, change: z.infer
   await Tank.transaction(async (trx) => {
     const tank = await Tank.query(trx).findOne({ estateId: access.estateId, id: tankId }).throwIfNotFound();
     const { name, litres, workingFill, minimumFill } = tank;
+    if (!change.retiredAt && (change.minimumFill ?? minimumFill) >= (change.workingFill ?? workingFill)) throw new Unusable('tankFill', say('tankFill', { tank: name }));
     await tank.$query(trx).patch(change);
     await writeAudit(trx, access, { action: change.retiredAt ? 'tanks.retire' : 'tanks.change', subjectType: 'tank', subjectId: tankId, subjectName: name, before: { name, litres, workingFill, minimumFill }, after: change });
   });

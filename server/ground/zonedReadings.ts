@@ -89,8 +89,9 @@ async function exclusionsAt(estateId: string, rows: readonly Pick<Reading, 'id' 
     .where('at', '>', until)
     .whereIn('subjectId', rows.map(({ id }) => id))
     .orderBy('id', 'desc');
+  const deeds = [...later.map(({ id, subjectId, before }) => ({ at: id, readings: [[subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null] as const] })), ...(await conflictsSince(estateId, until))];
   // Newest first, so that the first deed after that moment is written last and its "before" stays.
-  const then = new Map(later.map(({ subjectId, before }) => [subjectId, (before as { excludedReason: string | null } | null)?.excludedReason ?? null]));
+  const then = new Map(deeds.sort((a, b) => b.at - a.at).flatMap(({ readings }) => readings));
   // A whole table taken back after that moment was still counted then.
   const files = await EarlierFile.query().where({ estateId, state: 'takenBack' }).where('takenBackAt', '>', until);
   const reasonOf = new Map(files.map(({ id, takenBackReason }) => [id, takenBackReason]));
@@ -99,6 +100,15 @@ async function exclusionsAt(estateId: string, rows: readonly Pick<Reading, 'id' 
     if (reason !== undefined && (then.has(id) ? then.get(id)! : excludedReason) === reason) then.set(id, null);
   }
   return then;
+}
+
+/** What answers to conflicts, given or taken back after that moment, changed: each reading with its reason before. */
+async function conflictsSince(estateId: string, until: Date): Promise<{ at: number; readings: (readonly [string, string | null])[] }[]> {
+  const entries = await AuditEntry.query().where({ estateId, subjectType: 'conflict' }).whereIn('action', ['conflicts.settle', 'conflicts.reopen']).where('at', '>', until);
+  return entries.map(({ id, after }) => {
+    const { done, takenIn = [] } = after as { done?: { leftOut?: string[] }; takenIn?: { id: string; reason: string }[] };
+    return { at: id, readings: [...(done?.leftOut ?? []).map((reading) => [reading, null] as const), ...takenIn.map((one) => [one.id, one.reason] as const)] };
+  });
 }
 
 /** The state of the lab's figures as the history had it at that moment; a figure that it does not name had not been checked. */

@@ -5,6 +5,7 @@ import { accessOf, allow, idParam } from '../access/guard.ts';
 import { listConflicts } from '../services/readings/listConflicts.ts';
 import { excludeReading, listReadings } from '../services/readings/listReadings.ts';
 import { recordBatch } from '../services/readings/recordBatch.ts';
+import { reopenConflict } from '../services/readings/reopenConflict.ts';
 import { settleConflict } from '../services/readings/settleConflict.ts';
 
 /** Readings: appended in batches that may be repeated, never changed, left out only with a reason. */
@@ -25,6 +26,10 @@ export function readingRoutes(): Router {
   });
   router.post('/conflicts/:conflictId/settle', allow('conflicts.settle', 'own'), async (request, response) => {
     await settleConflict(accessOf(request), idParam(request, 'conflictId'), conflictChoice.parse(request.body), new Date());
+    response.status(204).end();
+  });
+  router.post('/conflicts/:conflictId/reopen', allow('conflicts.settle', 'own'), async (request, response) => {
+    await reopenConflict(accessOf(request), idParam(request, 'conflictId'), new Date());
     response.status(204).end();
   });
   return router;

@@ -123,6 +123,8 @@ export const en = {
   planLockedAlready: '"{plan}" is locked already.',
   readingsOfOthers: 'Readings of other people are in this. The manager decides it.',
   conflictSettled: 'This conflict was settled already.',
+  conflictOpen: 'This conflict is open. There is nothing to take back.',
+  conflictSettledBefore: 'This conflict was settled before answers could be taken back. Leave readings out or take them in one by one.',
   noSuchAnswer: 'This cannot be settled by "{choice}". Choose one of: {choices}.',
   chooseReading: 'Choose which of these readings stays.',
   noSuchVineToday: 'There is no row {row}, vine {vine} in {block} today. Leave the reading out, or keep it where it is.',

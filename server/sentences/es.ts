@@ -124,6 +124,8 @@ export const es: Record<SentenceKey, string> = {
   planLockedAlready: '«{plan}» ya está bloqueado.',
   readingsOfOthers: 'Hay lecturas de otras personas. Decide el encargado.',
   conflictSettled: 'Este conflicto ya se resolvió.',
+  conflictOpen: 'Este conflicto está abierto. No hay nada que deshacer.',
+  conflictSettledBefore: 'Este conflicto se resolvió antes de que se pudieran deshacer respuestas. Aparte o recupere las lecturas una a una.',
   noSuchAnswer: 'Esto no se puede resolver con «{choice}». Elija entre: {choices}.',
   chooseReading: 'Elija cuál de estas lecturas se queda.',
   noSuchVineToday: 'Hoy no hay hilera {row}, cepa {vine} en {block}. Aparte la lectura o déjela donde está.',

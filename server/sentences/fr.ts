@@ -124,6 +124,8 @@ export const fr: Record<SentenceKey, string> = {
   planLockedAlready: '« {plan} » est déjà verrouillé.',
   readingsOfOthers: 'Il y a des mesures d’autres personnes. Le responsable décide.',
   conflictSettled: 'Ce conflit a déjà été réglé.',
+  conflictOpen: 'Ce conflit est ouvert. Il n’y a rien à reprendre.',
+  conflictSettledBefore: 'Ce conflit a été réglé avant qu’une réponse puisse être reprise. Écartez ou reprenez les mesures une à une.',
   noSuchAnswer: 'Cela ne se règle pas par « {choice} ». Choisissez parmi : {choices}.',
   chooseReading: 'Choisissez laquelle de ces mesures reste.',
   noSuchVineToday: 'Il n’y a pas aujourd’hui de rang {row}, cep {vine} dans {block}. Écartez la mesure, ou laissez-la où elle est.',

@@ -124,6 +124,8 @@ export const it: Record<SentenceKey, string> = {
   planLockedAlready: '«{plan}» è già bloccato.',
   readingsOfOthers: 'Ci sono letture di altri. Decide il responsabile.',
   conflictSettled: 'Questo conflitto è già stato risolto.',
+  conflictOpen: 'Questo conflitto è aperto. Non c’è niente da annullare.',
+  conflictSettledBefore: 'Questo conflitto è stato risolto prima che le risposte si potessero annullare. Escludere o riprendere le letture una per una.',
   noSuchAnswer: 'Non si può risolvere con «{choice}». Scegliere tra: {choices}.',
   chooseReading: 'Scegliere quale di queste letture resta.',
   noSuchVineToday: 'Oggi in {block} non c’è filare {row}, ceppo {vine}. Escludere la lettura o lasciarla dov’è.',

@@ -124,6 +124,8 @@ export const pt: Record<SentenceKey, string> = {
   planLockedAlready: '«{plan}» já está bloqueado.',
   readingsOfOthers: 'Há leituras de outras pessoas. Decide o responsável.',
   conflictSettled: 'Este conflito já foi resolvido.',
+  conflictOpen: 'Este conflito está aberto. Não há nada a desfazer.',
+  conflictSettledBefore: 'Este conflito foi resolvido antes de as respostas poderem ser desfeitas. Ponha de parte ou recupere as leituras uma a uma.',
   noSuchAnswer: 'Isto não se pode resolver com «{choice}». Escolha entre: {choices}.',
   chooseReading: 'Escolha qual destas leituras fica.',
   noSuchVineToday: 'Hoje não há bardo {row}, cepa {vine} em {block}. Ponha a leitura de parte ou deixe-a onde está.',

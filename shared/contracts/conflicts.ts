@@ -43,6 +43,8 @@ export const conflictReading = z.object({
   isReserve: z.boolean(),
   note: z.string(),
   isLeftOut: z.boolean(),
+  /** It corrects an earlier record of the same reading, which stays in the history. */
+  isCorrected: z.boolean(),
 });
 
 export const conflictCard = z.object({
@@ -59,6 +61,8 @@ export const conflictCard = z.object({
   settledAt: z.string().nullable(),
   createdAt: z.string(),
   maySettle: z.boolean(),
+  /** Settled, and this person may take the answer back. */
+  mayReopen: z.boolean(),
 });
 export type ConflictCard = z.infer<typeof conflictCard>;
 

@@ -6,5 +6,6 @@ import { http } from '../lib/http.ts';
 export const useConflictsStore = defineStore('conflicts', () => {
   const list = (estateId: string) => http.get<ConflictList>(`/api/estates/${estateId}/conflicts`);
   const settle = (estateId: string, conflictId: string, choice: ConflictAnswer, keptReadingId: string | null) => http.post(`/api/estates/${estateId}/conflicts/${conflictId}/settle`, { choice, keptReadingId });
-  return { list, settle };
+  const reopen = (estateId: string, conflictId: string) => http.post(`/api/estates/${estateId}/conflicts/${conflictId}/reopen`, {});
+  return { list, settle, reopen };
 });

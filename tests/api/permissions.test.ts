@@ -105,6 +105,7 @@ const doors: Door[] = [
   door('post', `/bags/${nobody}/settle`, 'results.check'),
   door('get', '/conflicts', 'conflicts.settle', 'own'),
   door('post', `/conflicts/${nobody}/settle`, 'conflicts.settle', 'own'),
+  door('post', `/conflicts/${nobody}/reopen`, 'conflicts.settle', 'own'),
   door('get', '/crew-code', 'people.manage', 'propose'),
   door('post', '/crew-code', 'people.manage', 'propose'),
   door('delete', '/crew-code', 'people.manage', 'propose'),

@@ -24,6 +24,7 @@ export const field: Operations = belowEstate({
   'put /readings/:readingId/exclusion': { does: 'Leave a reading out of the figures with a reason, or take it in again', body: readingExclusion, status: 204 },
   'get /conflicts': { does: 'Readings and bags that contradict each other', answer: conflictList },
   'post /conflicts/:conflictId/settle': { does: 'Settle a conflict; both readings stay', body: conflictChoice, status: 204 },
+  'post /conflicts/:conflictId/reopen': { does: 'Take a mistaken answer to a conflict back', status: 204 },
   'get /bags': { does: 'Bags with where they stand: expected, here, missing, extra', query: bagQuery, answer: bagList },
   'post /bags': { does: 'Store bags closed in the row; may be repeated; a label used twice is a conflict', body: bagBatch, answer: bagBatchAnswer },
   'post /bags/received': { does: 'Take bags in at the lab by their labels', body: bagReceipt, answer: bagReceiptAnswer },

@@ -3,6 +3,7 @@ import type { ConflictKind } from '../../../shared/contracts/conflicts.ts';
 import type { NewReading } from '../../../shared/contracts/readings.ts';
 import type { Access } from '../../access/access.ts';
 import { loadBlockVines } from '../../ground/blockVines.ts';
+import { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 
@@ -12,8 +13,10 @@ import { vineWords } from '../plans/viewPlan.ts';
  * Returns the ids of the fresh readings that meet another reading.
  */
 export async function findConflicts(trx: Transaction, access: Access, fresh: readonly NewReading[]): Promise<string[]> {
-  // A correction stands for what it corrects: it is looked at only when both come together.
-  const onVines = fresh.filter(({ rowId, supersedes, source }) => rowId !== null && source !== 'lab' && (supersedes === null || fresh.some(({ id }) => id === supersedes)));
+  const leftOut = new Set((await Reading.query(trx).where({ estateId: access.estateId }).whereIn('id', fresh.flatMap(({ supersedes }) => supersedes ?? [])).whereNotNull('excludedReason').select('id')).map(({ id }) => id));
+  // A correction stands for what it corrects: it is looked at only when both come together, or when what it corrects was
+  // left out meanwhile and it would count beside what was kept.
+  const onVines = fresh.filter(({ rowId, supersedes, source }) => rowId !== null && source !== 'lab' && (supersedes === null || leftOut.has(supersedes) || fresh.some(({ id }) => id === supersedes)));
   if (onVines.length === 0) return [];
   await findOldZones(trx, access, onVines);
   await findRenumbered(trx, access, onVines);

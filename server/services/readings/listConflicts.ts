@@ -3,10 +3,11 @@ import type { ConflictCard, ConflictList } from '../../../shared/contracts/confl
 import type { Access } from '../../access/access.ts';
 import { loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
 import { Person } from '../../models/Person.ts';
-import { Reading } from '../../models/Reading.ts';
+import type { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { Round } from '../../models/Round.ts';
 import { vineWords } from '../plans/viewPlan.ts';
+import { inOrderOfTaking, newestReadings } from './newestReadings.ts';
 import { nameFor } from './readerName.ts';
 
 const most = 200;
@@ -19,15 +20,15 @@ export async function listConflicts(access: Access): Promise<ConflictList> {
   const query = ReadingConflict.query().where({ estateId }).orderByRaw("state = 'settled'").orderBy('createdAt', 'desc').limit(most);
   if (!settlesAll(access)) query.whereRaw('reading_ids && array(select id from readings where estate_id = ? and person_id = ?)', [estateId, access.personId]);
   const conflicts = await query;
-  const readings = (await Reading.query().where({ estateId }).whereIn('id', conflicts.flatMap(({ readingIds }) => readingIds))).filter(isOnVine);
+  const chains = await newestReadings(estateId, conflicts.flatMap(({ readingIds }) => readingIds));
+  const readings = inOrderOfTaking(chains.values()).filter(isOnVine);
   const [people, rounds] = await Promise.all([
     Person.query().findByIds([...new Set([...readings.flatMap(({ personId, typedBy }) => [personId, typedBy]), ...conflicts.map(({ settledBy }) => settledBy)].filter((id) => id !== null))]).select('id', 'name'),
     Round.query().where({ estateId }).findByIds([...new Set(readings.flatMap(({ roundId }) => (roundId === null ? [] : [roundId])))]).select('id', 'onDate'),
   ]);
   const grounds = new Map<string, BlockVines>();
   for (const blockId of new Set(readings.map((reading) => reading.blockId))) grounds.set(blockId, await loadBlockVines(estateId, blockId));
-  const byId = new Map(readings.map((reading) => [reading.id, reading]));
-  const items = conflicts.map((conflict) => cardOf(conflict, { access, grounds, people, rounds, readings: conflict.readingIds.flatMap((id) => byId.get(id) ?? []) }));
+  const items = conflicts.map((conflict) => cardOf(conflict, { access, grounds, people, rounds, readings: inOrderOfTaking(conflict.readingIds.map((id) => chains.get(id) ?? [])).filter(isOnVine) }));
   return { items, total: items.length, open: items.filter(({ state }) => state === 'open').length };
 }
 
@@ -48,22 +49,23 @@ interface CardFacts {
 }
 
 function cardOf(conflict: ReadingConflict, { access, grounds, people, rounds, readings }: CardFacts): ConflictCard {
-  const inOrder = [...readings].sort((a, b) => a.takenAt.getTime() - b.takenAt.getTime() || a.receivedAt.getTime() - b.receivedAt.getTime());
-  const first = inOrder[0];
+  const first = readings[0];
+  const mayAnswer = settlesAll(access) || readings.every(({ personId }) => personId === access.personId);
   return {
     id: conflict.id,
     kind: conflict.kind,
     state: conflict.state,
     blockName: first ? (grounds.get(first.blockId)?.block.name ?? '') : '',
     roundDate: rounds.find(({ id }) => id === first?.roundId)?.onDate ?? null,
-    readings: inOrder.slice(0, shownReadings).map((reading) => readingOf(reading, { access, people, ground: grounds.get(reading.blockId)! })),
-    readingIds: conflict.readingIds,
+    readings: readings.slice(0, shownReadings).map((reading) => readingOf(reading, { access, people, ground: grounds.get(reading.blockId)! })),
+    readingIds: readings.map(({ id }) => id),
     choice: conflict.choice,
     keptReadingId: conflict.keptReadingId,
     settledBy: people.find(({ id }) => id === conflict.settledBy)?.name ?? null,
     settledAt: conflict.settledAt?.toISOString() ?? null,
     createdAt: conflict.createdAt.toISOString(),
-    maySettle: conflict.state === 'open' && (settlesAll(access) || readings.every(({ personId }) => personId === access.personId)),
+    maySettle: conflict.state === 'open' && mayAnswer,
+    mayReopen: conflict.state === 'settled' && mayAnswer,
   };
 }
 
@@ -89,5 +91,6 @@ function readingOf(reading: VineReading, { access, people, ground }: { access: A
     isReserve: flags.includes('reserve'),
     note: reading.note,
     isLeftOut: reading.excludedReason !== null,
+    isCorrected: reading.supersedes !== null,
   };
 }

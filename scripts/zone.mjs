@@ -15,7 +15,7 @@ function isBuilt() {
   if (!existsSync(program) || !existsSync(sourceList)) return false;
   const built = statSync(program).mtimeMs;
   const sources = JSON.parse(readFileSync(sourceList, 'utf8'));
-  return sources.every((file) => existsSync(inCheckout(file)) && statSync(inCheckout(file)).mtimeMs <= built);
+  return sources.every((file) => (statSync(inCheckout(file), { throwIfNoEntry: false })?.mtimeMs ?? Infinity) <= built);
 }
 
 async function buildProgram() {

@@ -73,11 +73,11 @@ export function pixelsToCells(grid: GridFrame, frame: RasterFrame, window: Pixel
   return toGrid === undefined ? linearMap(inCells) : latticeMap(inCells, window, 0.01);
 }
 
-/** First and last column and row of the cells that a rectangle of pixels may touch, off the grid too. Its sides are followed at 16 places, and a cell is left for bends between them. */
+/** First and last column and row of the cells that a rectangle of pixels may touch, off the grid too. Where its sides may bend they are followed at 16 places, and a cell is left for bends between them. */
 export function cellsUnder(map: PlaneMap, { firstCol, firstRow, cols, rows }: PixelWindow): { firstCol: number; lastCol: number; firstRow: number; lastRow: number } {
   const place = new Float64Array(2);
   let [west, north, east, south] = [Infinity, Infinity, -Infinity, -Infinity];
-  for (const [u, v] of rimOf({ cols, rows })) {
+  for (const [u, v] of map.isSeparable ? cornersOf({ cols, rows }) : rimOf({ cols, rows })) {
     map.row({ u: firstCol + u, v: firstRow + v, count: 1 }, place);
     west = Math.min(west, place[0]!);
     east = Math.max(east, place[0]!);
@@ -113,6 +113,10 @@ export function pointInPixels(grid: GridFrame, { transform, toGrid }: RasterFram
     const [x, y] = toGrid === undefined ? metres : toGrid.inverse(metres);
     return [((x - t0) * t5 - (y - t3) * t2) / determinant, ((y - t3) * t1 - (x - t0) * t4) / determinant];
   };
+}
+
+function cornersOf({ cols, rows }: Pick<GridFrame, 'cols' | 'rows'>): (readonly [number, number])[] {
+  return [[0, 0], [cols, 0], [0, rows], [cols, rows]];
 }
 
 /** Positions along the four sides, close enough together for the bend of a map projection. */

@@ -9,7 +9,9 @@ export type Code = number | readonly Code[];
 
 export const I32 = 0x7f;
 export const F64 = 0x7c;
-export type ValueType = typeof I32 | typeof F64;
+/** Sixteen bytes that one instruction works on (WebAssembly Core Specification 2.0, "Vector Instructions"). */
+export const V128 = 0x7b;
+export type ValueType = typeof I32 | typeof F64 | typeof V128;
 
 const EMPTY = 0x40;
 
@@ -49,6 +51,14 @@ export const loadByte = (address: Code): Code => [address, 0x2d, 0, 0];
 export const storeByte = (address: Code, value: Code): Code => [address, value, 0x3a, 0, 0];
 export const storeInt = (address: Code, value: Code): Code => [address, value, 0x36, 2, 0];
 
+export const loadVector = (address: Code): Code => [address, 0xfd, 0x00, 0, 0];
+export const storeVector = (address: Code, value: Code): Code => [address, value, 0xfd, 0x0b, 0, 0];
+export const zeroVector: Code = [0xfd, 0x0c, new Array<number>(16).fill(0)];
+/** Eight whole numbers of 16 bits, each wrapping by itself. */
+export const addShorts = (left: Code, right: Code): Code => [left, right, 0xfd, 0x8e, 0x01];
+/** Sixteen bytes picked from both: 0…15 from the left, 16…31 from the right. */
+export const pickBytes = (left: Code, right: Code, bytes: readonly number[]): Code => [left, right, 0xfd, 0x0d, bytes];
+
 export const when = (condition: Code, then: Code, otherwise: Code = []): Code => [condition, 0x04, EMPTY, then, 0x05, otherwise, 0x0b];
 export const either = (condition: Code, then: Code, otherwise: Code): Code => [condition, 0x04, F64, then, 0x05, otherwise, 0x0b];
 export const result = (value: Code): Code => [value, 0x0f];
@@ -64,6 +74,7 @@ export const next = (depth: number): Code => [0x0c, unsigned(depth)];
 type Locals<Name extends string> = Readonly<Record<Name, ValueType>>;
 
 export const ints = <Name extends string>(...names: Name[]) => Object.fromEntries(names.map((name) => [name, I32])) as Locals<Name>;
+export const vectors = <Name extends string>(...names: Name[]) => Object.fromEntries(names.map((name) => [name, V128])) as Locals<Name>;
 export const floats = <Name extends string>(...names: Name[]) => Object.fromEntries(names.map((name) => [name, F64])) as Locals<Name>;
 
 /** Numbers of the locals of a function. */

@@ -3,6 +3,8 @@
  * Predictor 3: Adobe TIFF Technical Note 3 (bytes of floats sorted into planes, most significant first, then differences).
  */
 
+import { addAlongRows } from './runningSums.ts';
+
 type Wrapping = Uint8Array | Uint16Array | Uint32Array;
 
 /** Samples of one row, their distance to the left neighbour of the same band, and bytes of a sample. */
@@ -29,6 +31,7 @@ export function undoDifferences(bytes: Uint8Array<ArrayBuffer>, { samplesPerRow,
       : bytesPerSample === 2
         ? new Uint16Array(bytes.buffer, bytes.byteOffset, count)
         : new Uint32Array(bytes.buffer, bytes.byteOffset, count);
+  if (samples instanceof Uint16Array && addAlongRows(samples, samplesPerRow, stride)) return;
   for (let row = 0; row < count; row += samplesPerRow) {
     const end = Math.min(count, row + samplesPerRow);
     addDifferences(samples, row, { end, stride });

@@ -112,6 +112,6 @@ export const ripeningView = resultsView.extend({
   /** Heat above 10 °C of the season so far; null while no temperatures are kept. */
   heat: heatSum.nullable(),
   /** Sugar in a berry, zone by zone, where berries were weighed on two visits. */
-  loading: z.array(z.object({ zone: z.number().int(), from: z.string(), to: z.string(), word: z.enum(['loading', 'concentration', 'dilution', 'losing', 'notDistinguishable']), confidence: z.number(), sugarMg: z.number(), sugarHalfWidth: z.number().nullable(), brix: z.number(), berryWeightG: z.number() })),
+  loading: z.array(z.object({ zone: z.number().int(), from: z.string(), to: z.string(), word: z.enum(['loading', 'concentration', 'dilution', 'losing', 'notDistinguishable']), confidence: z.number(), sugarMg: z.number(), sugarHalfWidth: z.number().nullable(), brix: z.number(), brixHalfWidth: z.number().nullable(), berryWeightG: z.number(), berryWeightHalfWidth: z.number().nullable() })),
 });
 export type RipeningView = z.infer<typeof ripeningView>;

@@ -3,7 +3,7 @@ import { ceilGuarded } from './sampleSize.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { intervalOf, type Estimate, type Interval, type SampleFacts } from './precision.ts';
 import { criticalT, criticalZ, normalUpperQuantile } from './quantiles.ts';
-import { summarise } from './variances.ts';
+import { sdAboveRounding, summarise } from './variances.ts';
 
 /**
  * Has anything changed between two visits? The words on the screen come from here, so that noise is never called a
@@ -42,9 +42,13 @@ export function changeWithCommonSpread(before: SampleFacts, after: SampleFacts, 
   return changeOf({ value: after.mean - before.mean, standardError, df }, confidence);
 }
 
-/** Between two visits to the same vines, in the same order. Example: six vines rising 0.75 → 0.513 to 0.987 at 95 %. */
-export function changeOfSameVines(before: readonly number[], after: readonly number[], confidence: number): Change {
-  const { n, mean, sd } = summarise(after.map((value, i) => value - before[i]!));
+/**
+ * Between two visits to the same vines, in the same order. `step` is that of the readings: both ends of a difference
+ * were rounded. Example: six vines rising 0.75 → 0.513 to 0.987 at 95 %.
+ */
+export function changeOfSameVines(before: readonly number[], after: readonly number[], confidence: number, step = 0): Change {
+  const { n, mean, sd: seen } = summarise(after.map((value, i) => value - before[i]!));
+  const sd = sdAboveRounding(seen, step * Math.SQRT2);
   return changeOf({ value: mean, standardError: sd / Math.sqrt(n), df: Math.max(0, n - 1) }, confidence);
 }
 

@@ -29,6 +29,15 @@ export function summarise(values: readonly number[]): Summary {
   return { n, mean: centre, variance, sd: Math.sqrt(variance) };
 }
 
+/**
+ * A spread no smaller than that of what rounding to a step took away, step/√12: three bags that all read 21.0 are not
+ * known to the last digit. Source: variance of a rectangular distribution, JCGM 100:2008 §4.3.7. Example: 0 with a step
+ * of 0.1 → 0.028868. NaN stays NaN.
+ */
+export function sdAboveRounding(sd: number, step: number): number {
+  return Math.max(sd, step / Math.sqrt(12));
+}
+
 /** Σ(xᵢ−x̄)(xᵢ₋₁−x̄)/Σ(xᵢ−x̄)²: how alike neighbours in the list are (NIST StRD definition). */
 export function lagOneCorrelation(values: readonly number[]): number {
   const { mean: centre } = summarise(values);

@@ -245,3 +245,15 @@ describe('learned factors', () => {
     expect(answer.body.detail).toMatch(/rests on one lot; 3 are needed/);
   });
 });
+
+describe('equal readings', () => {
+  it('are not known to the last digit, and no small step between them is called a change', async () => {
+    for (const [day, value] of [['2026-09-01', 2.5], ['2026-09-08', 2.6]] as const) await read(west, 1, [value, value, value], { measureCode: 'malic', unit: 'g/L', day });
+    const view = (await winemaker.get(`${base()}/blocks/${west.blockId}/ripening`)).body as RipeningView;
+    const series = view.series.find(({ measure, zone }) => measure === 'malic' && zone === 1)!;
+    // t(0.975; 2) = 4.302653 times 0.1/√12/√3 is 0.0717; the zone's vines take a little off.
+    expect(series.points[0]!.halfWidth).toBeGreaterThan(0.07);
+    expect(series.points[0]!.halfWidth).toBeLessThan(0.0718);
+    expect(series.change).toMatchObject({ sameVines: true, word: 'notDistinguishable' });
+  });
+});

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { changeBetween, changeOfSameVines, changeWithCommonSpread, sdOfDifferences, smallestDetectableChange, vinesToSeeChange, vinesToSeeChangeNormal, wordForChange } from '../../shared/sampling/change.ts';
 import { meanEstimate } from '../../shared/sampling/precision.ts';
-import { summarise } from '../../shared/sampling/variances.ts';
+import { sdAboveRounding, summarise } from '../../shared/sampling/variances.ts';
 
 function expectRelative(actual: number, expected: number, tolerance = 1e-6): void {
   expect(Math.abs(actual - expected)).toBeLessThanOrEqual(tolerance * Math.abs(expected));
@@ -55,6 +55,17 @@ describe('change between two visits', () => {
     const independent = changeWithCommonSpread(summarise(BEFORE), summarise(AFTER), 0.95);
     expectRelative(independent.lower, 0.015315, 1e-4);
     expectRelative(independent.upper, 1.484685, 1e-6);
+  });
+
+  it('equal readings are not known to the last digit: rounding keeps a spread of step/√12', () => {
+    // 3 readings at a step of 0.1: t(0.975; 2) = 4.302653, 0.1/√12 = 0.0288675 (JCGM 100:2008 §4.3.7).
+    expect(sdAboveRounding(0, 0.1)).toBeCloseTo(0.0288675, 7);
+    expect(sdAboveRounding(0.4, 0.1)).toBe(0.4);
+    expect(sdAboveRounding(Number.NaN, 0.1)).toBeNaN();
+    // Both ends of a difference were rounded: 0.0288675·√2/√3·4.302653 = 0.101415.
+    const equal = changeOfSameVines([20, 20, 20], [20.1, 20.1, 20.1], 0.95, 0.1);
+    expect(equal.halfWidth).toBeCloseTo(0.101415, 5);
+    expect(equal.word).toBe('notDistinguishable');
   });
 
   it('follows Welch where the spreads differ', () => {

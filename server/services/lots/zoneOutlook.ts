@@ -54,7 +54,7 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
     const own = counted.filter((reading) => reading.zone === zone);
     const indexes = [...zoneOf.keys()].filter((vine) => zoneOf[vine] === zone);
     const bearing = indexes.filter((vine) => isBearing(ground.states[vine]!)).length;
-    const newest = (code: string) => newestVisit(own.filter((reading) => reading.measureCode === code), bearing);
+    const newest = (code: string) => newestVisit(own.filter((reading) => reading.measureCode === code), { bearing, decimals: measureOf(code).decimals });
     const clusters = newest('clusterCount');
     const weight = newest('clusterWeight');
     const beforeVeraison = weight !== null && season.phases.veraison !== undefined && weight.visit < season.phases.veraison[0];
@@ -91,9 +91,9 @@ export function zoneOutlooks(input: { ground: BlockVines; zoneOf: Uint8Array; zo
 }
 
 /** The mean of the newest day on which the zone was measured. */
-function newestVisit(readings: ZonedReading[], bearing: number): VisitMean | null {
+function newestVisit(readings: ZonedReading[], how: { bearing: number; decimals: number }): VisitMean | null {
   const day = readings.reduce<string | null>((newest, reading) => (newest === null || reading.visit > newest ? reading.visit : newest), null);
-  return day === null ? null : visitMean(readings.filter((reading) => reading.visit === day), bearing);
+  return day === null ? null : visitMean(readings.filter((reading) => reading.visit === day), how);
 }
 
 interface PartFacts {

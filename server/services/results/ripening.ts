@@ -94,7 +94,7 @@ function loadingOf(zone: number, { values }: { values: readonly ZoneResult[] }):
   const { confidence } = of('brix', to)!;
   const change = loadingChange(state(from), state(to), confidence);
   const told = (half: number) => (Number.isNaN(half) ? null : half);
-  return { zone, from, to, word: change.word, confidence, sugarMg: change.sugarMg.value, sugarHalfWidth: told(change.sugarMg.halfWidth), brix: change.brix.value, berryWeightG: change.berryWeightG.value };
+  return { zone, from, to, word: change.word, confidence, sugarMg: change.sugarMg.value, sugarHalfWidth: told(change.sugarMg.halfWidth), brix: change.brix.value, brixHalfWidth: told(change.brix.halfWidth), berryWeightG: change.berryWeightG.value, berryWeightHalfWidth: told(change.berryWeightG.halfWidth) };
 }
 
 interface Made {
@@ -117,7 +117,7 @@ function seriesOf(measure: MeasureRecord, facts: { zone: number; values: ZoneRes
       zone: facts.zone,
       measure: measure.code,
       points: own.map((value) => ({ visit: value.visit, day: dayOf(value.visit), value: value.mean, halfWidth: value.halfWidth, n: value.n, provisional: value.provisional, isFinal: value.isFinal })),
-      change: changeSince(own, readings),
+      change: changeSince(own, readings, options.resolution),
       trend: trend.kind === 'trend' ? { ...trend, rSquared: Number.isNaN(trend.rSquared) ? null : trend.rSquared } : trend,
       bend: bend.kind === 'bend' ? bend.word : null,
       forecast: trend.kind === 'trend' && !facts.isOver ? band(trend) : [],
@@ -135,14 +135,14 @@ function protocolOf(readings: readonly ZonedReading[], visit: string): 'bags' | 
 }
 
 /** From the visit before to the newest; paired when mostly the same vines were read, else between two independent means. */
-function changeSince(own: ZoneResult[], readings: ZonedReading[]): VisitChange | null {
+function changeSince(own: ZoneResult[], readings: ZonedReading[], step: number): VisitChange | null {
   const [before, after] = own.slice(-2);
   if (before === undefined || after === undefined) return null;
   const [first, second] = [valuesByVine(readings, before.visit), valuesByVine(readings, after.visit)];
   const common = [...first.keys()].filter((vine) => second.has(vine));
   const sameVines = common.length >= leastPairs && common.length >= sameShare * Math.max(first.size, second.size);
   const change = sameVines
-    ? changeOfSameVines(common.map((vine) => first.get(vine)!), common.map((vine) => second.get(vine)!), after.confidence)
+    ? changeOfSameVines(common.map((vine) => first.get(vine)!), common.map((vine) => second.get(vine)!), after.confidence, step)
     : betweenMeans(before, after);
   return { from: before.visit, sameVines, value: change.value, halfWidth: Number.isNaN(change.halfWidth) ? null : change.halfWidth, word: change.word };
 }

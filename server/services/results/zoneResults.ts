@@ -98,10 +98,10 @@ function togetherOf(measure: MeasureRecord, readings: ZonedReading[], { bearing,
 function resultOfVisit(measure: MeasureRecord, readings: ZonedReading[], bearingHere: number): Omit<ZoneResult, 'zone'> | null {
   const counted = readings.filter((reading) => reading.excludedReason === null);
   if (counted.length === 0) return null;
-  const mean = meanOf(visitMean(counted, bearingHere), measure.confidence);
+  const mean = meanOf(visitMean(counted, { bearing: bearingHere, decimals: measure.decimals }), measure.confidence);
   const populationSize = Math.max(bearingHere, mean.n);
   const margin = measure.marginKind === 'absolute' ? measure.margin : Math.abs(mean.mean) * measure.margin;
-  const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: Math.max(mean.sd, 1e-9), margin, confidence: measure.confidence, populationSize });
+  const missing = mean.sd === null || !(margin > 0) ? null : howManyMore({ n: mean.n, spread: mean.sd, margin, confidence: measure.confidence, populationSize });
   return {
     ...mean,
     measure: measure.code,

@@ -1,5 +1,6 @@
-import { kgPerUnit, type MassUnit } from '../contracts/tickets.ts';
+import { kgPerUnit, longestTicketNo, mostLoadKg, type MassUnit } from '../contracts/tickets.ts';
 import { columnNamed, dateOrderOf, dayIn, decimalMarkOf, numberIn, plainWords, readPastedTable, type DateOrder, type DecimalMark } from '../ripening/pastedTable.ts';
+import { isFruitDay, type SeasonDays } from '../season/ofSeason.ts';
 
 /**
  * Scale tickets from a weighbridge's table: number, lot, gross and tare (or net alone), unit, day and time. What could
@@ -21,7 +22,7 @@ export interface ReadTicket {
 }
 
 export type TicketQuestion = 'dateOrder' | 'decimalMark' | 'unit';
-export type TicketProblemCode = 'empty' | 'tooMany' | 'noNumberColumn' | 'noLotColumn' | 'noWeightColumn' | 'noDayColumn' | 'noTicketNo' | 'unknownLot' | 'noWeight' | 'tareAbove' | 'netDiffers' | 'noDay' | 'twice' | 'known' | 'unknownUnit';
+export type TicketProblemCode = 'empty' | 'tooMany' | 'noNumberColumn' | 'noLotColumn' | 'noWeightColumn' | 'noDayColumn' | 'noTicketNo' | 'unknownLot' | 'noWeight' | 'tareAbove' | 'netDiffers' | 'noDay' | 'noTime' | 'outOfSeason' | 'tooHeavy' | 'longNumber' | 'twice' | 'known' | 'unknownUnit';
 export interface TicketProblem {
   readonly code: TicketProblemCode;
   readonly line: number | null;
@@ -38,6 +39,8 @@ export interface TicketContext {
   readonly lots: readonly { readonly id: string; readonly name: string }[];
   /** Numbers that are entered already. */
   readonly known: readonly string[];
+  /** The season of these lots. */
+  readonly season: SeasonDays;
 }
 
 export interface ReadTickets {
@@ -104,6 +107,7 @@ function readLine({ line, cells }: { line: number; cells: readonly string[] }, {
   const problem = (code: TicketProblemCode, cell: string): TicketProblem => ({ code, line, cell });
   const ticketNo = cellOf('ticketNo');
   if (ticketNo === '') return problem('noTicketNo', '');
+  if (ticketNo.length > longestTicketNo) return problem('longNumber', `${ticketNo.slice(0, longestTicketNo)}…`);
   if (context.known.includes(ticketNo)) return problem('known', ticketNo);
   const lot = context.lots.find(({ name }) => plainWords(name) === plainWords(cellOf('lot')));
   if (lot === undefined) return problem('unknownLot', cellOf('lot'));
@@ -111,17 +115,31 @@ function readLine({ line, cells }: { line: number; cells: readonly string[] }, {
   if (own === undefined) return problem('unknownUnit', cellOf('unit'));
   const weight = (use: 'gross' | 'tare' | 'net') => (cellOf(use) === '' ? null : numberIn(cellOf(use), mark));
   const [gross, tare, net] = [weight('gross'), weight('tare'), weight('net')];
-  const wrong = (['gross', 'tare', 'net'] as const).find((use) => Number.isNaN(weight(use)));
+  const wrong = (['gross', 'tare', 'net'] as const).find((use) => Number.isNaN(weight(use)) || (weight(use) ?? 0) < 0);
   if (wrong) return problem('noWeight', cellOf(wrong));
   const netOnly = gross === null || tare === null;
   const [told, empty] = netOnly ? [net, 0] : [gross, tare];
   if (told === null || !(told > 0)) return problem('noWeight', cellOf('net'));
+  if (told * kgPerUnit[own] > mostLoadKg) return problem('tooHeavy', cellOf(netOnly ? 'net' : 'gross'));
   if (empty >= told) return problem('tareAbove', `${cellOf('gross')} / ${cellOf('tare')}`);
   if (!netOnly && net !== null && Math.abs(gross - tare - net) * kgPerUnit[own] > netToleranceKg) return problem('netDiffers', cellOf('net'));
   const day = dayIn(cellOf('day'), order);
   if (day === null) return problem('noDay', cellOf('day'));
-  const time = /(\d{1,2})[:h.](\d{2})(?!\d)/.exec(cellOf('time') || cellOf('day').replace(/^\S+\s*/, ''));
-  return { line, ticketNo, lotId: lot.id, lotName: lot.name, gross: told, tare: empty, unit: own, day, time: time ? `${time[1]!.padStart(2, '0')}:${time[2]}` : '12:00', netOnly };
+  if (!isFruitDay(day, context.season)) return problem('outOfSeason', cellOf('day'));
+  const clock = cellOf('time') || cellOf('day').replace(/^\S+\s*/, '');
+  const time = clock === '' ? '12:00' : timeIn(clock);
+  if (time === null) return problem('noTime', clock);
+  return { line, ticketNo, lotId: lot.id, lotName: lot.name, gross: told, tare: empty, unit: own, day, time, netOnly };
+}
+
+/** "hh:mm" of a time of day, also with a or p for the half of the day; null when there is no such time. `timeIn('2:30 pm')` is 14:30. */
+function timeIn(cell: string): string | null {
+  const found = /(\d{1,2})[:h.](\d{2})(?!\d)(?:.*?\b([ap])\.?\s?m\b)?/i.exec(cell);
+  if (!found) return null;
+  const [typed, minute, half] = [Number(found[1]), Number(found[2]), found[3]?.toLowerCase()];
+  if (half && (typed < 1 || typed > 12)) return null;
+  const hour = half ? (typed % 12) + (half === 'p' ? 12 : 0) : typed;
+  return hour > 23 || minute > 59 ? null : `${String(hour).padStart(2, '0')}:${found[2]}`;
 }
 
 function twice(tickets: readonly ReadTicket[]): TicketProblem[] {

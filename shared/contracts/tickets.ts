@@ -8,6 +8,10 @@ export type MassUnit = (typeof massUnits)[number];
 /** Kilograms in one of each. Source: NIST SP 811 (2008), Appendix B. */
 export const kgPerUnit: Record<MassUnit, number> = { kg: 1, t: 1000, lb: 0.45359237, shortTon: 907.18474 };
 
+export const longestTicketNo = 60;
+/** No weighbridge takes more at once; above it a unit was mistaken. */
+export const mostLoadKg = 200_000;
+
 const splitPart = z.object({
   blockId: id,
   zoneNumber: z.number().int().min(1).nullable().default(null),
@@ -24,7 +28,7 @@ export type TicketSplit = z.infer<typeof splitPart>;
 export const newTicket = z
   .object({
     lotId: id,
-    ticketNo: z.string().trim().min(1, 'Type the number printed on the ticket.').max(60),
+    ticketNo: z.string().trim().min(1, 'Type the number printed on the ticket.').max(longestTicketNo),
     gross: z.number().positive(),
     tare: z.number().min(0),
     unit: z.enum(massUnits).default('kg'),
@@ -34,6 +38,7 @@ export const newTicket = z
     note: z.string().trim().max(500).default(''),
   })
   .refine((ticket) => ticket.tare < ticket.gross, { path: ['tare'], message: 'The tare must be below the gross weight. Check which is which.' })
+  .refine((ticket) => ticket.gross * kgPerUnit[ticket.unit] <= mostLoadKg, { path: ['gross'], message: 'More than 200 t on one ticket. Check the weight and its unit.' })
   .refine((ticket) => ticket.corrects === null || ticket.note !== '', { path: ['note'], message: 'Say why the ticket is corrected.' });
 export type NewTicket = z.infer<typeof newTicket>;
 

@@ -48,3 +48,30 @@ describe('a tank', () => {
     expect([twice.status, twice.body.detail]).toEqual([409, 'This is taken already: name. Choose another.']);
   });
 });
+
+describe('a day that no fruit of the season comes in', () => {
+  it('is refused for a lot, a ticket, a table of tickets and a proposal, with the days that can be', async () => {
+    const lotId = (await owner.post(`${base()}/lots`, { name: 'Late' })).body.id as string;
+    const answers = [
+      await owner.post(`${base()}/lots`, { name: 'Wrong year', pickOn: '1999-09-20' }),
+      await owner.write('patch', `${base()}/lots/${lotId}`).set('if-match', '"1"').send({ pickOn: '2062-09-20' }),
+      await owner.post(`${base()}/tickets`, { lotId, ticketNo: 'Y', gross: 9000, tare: 3000, weighedAt: '1926-09-20T09:00:00Z' }),
+      await owner.post(`${base()}/lot-suggestions`, { name: 'Old', firstDay: '1999-09-20' }),
+    ];
+    for (const { status, body } of answers) {
+      expect([status, body.code]).toEqual([422, 'notOfSeason']);
+      expect(body.detail).toMatch(/lies outside season .+ from \d{4}-\d\d-\d\d to \d{4}-\d\d-\d\d/);
+    }
+    const table = await owner.post(`${base()}/tickets/import`, { text: 'ticket;lot;gross kg;tare kg;date\nY;Late;9000;3000;2062-09-20', apply: true });
+    expect([table.status, table.body.code]).toEqual([422, 'tableProblems']);
+    expect((await owner.get(`${base()}/tickets`)).body.items).toEqual([]);
+  });
+
+  it('no load of more than 200 t is taken for one, nor a time of day that there is not', async () => {
+    const lots = (await owner.get(`${base()}/lots`)).body.lots as { id: string }[];
+    const heavy = await owner.post(`${base()}/tickets`, { lotId: lots[0]!.id, ticketNo: 'H', gross: 9200, tare: 3100, unit: 't', weighedAt: '2026-09-20T09:00:00Z' });
+    expect([heavy.status, heavy.body.errors[0].path]).toEqual([422, 'gross']);
+    const odd = await owner.post(`${base()}/tickets/import`, { text: 'ticket;lot;gross kg;tare kg;date;time\nY;Late;9000;3000;2026-09-20;27:99', apply: true });
+    expect([odd.status, odd.body.code]).toEqual([422, 'tableProblems']);
+  });
+});

@@ -61,7 +61,7 @@ describe('weather beside a visit', () => {
 });
 
 describe('a table of scale tickets', () => {
-  const context = { lots: [{ id: 'l1', name: 'Marl red' }, { id: 'l2', name: 'Early rosé' }], known: ['A-1'] };
+  const context = { lots: [{ id: 'l1', name: 'Marl red' }, { id: 'l2', name: 'Early rosé' }], known: ['A-1'], season: { startsOn: '2025-12-01', endsOn: '2026-11-30' } };
 
   it('is read with lots by name, time and net checked', () => {
     const read = readTickets('Ticket no;Lot no;Gross kg;Tare kg;Net kg;Date\nA-2;marl RED;12 400;4 000;8 400;14/09/2026 10:35\nA-3;Early rosé;9000,5;3000;6000,5;2026-09-15\n', context);
@@ -84,6 +84,20 @@ describe('a table of scale tickets', () => {
     const lines = ['A-1,Marl red,900,100,800,2026-09-14', 'A-2,Nowhere,900,100,800,2026-09-14', 'A-3,Marl red,900,100,700,2026-09-14', 'A-4,Marl red,100,900,,2026-09-14', 'A-5,Marl red,900,100,,2026-02-30', 'A-6,Marl red,900,100,,2026-09-14', 'A-6,Marl red,900,100,,2026-09-14'];
     const { problems } = readTickets(`ticket,lot,gross kg,tare,net,date\n${lines.join('\n')}\n`, context);
     expect(problems.map(({ code, line }) => `${code} ${line}`)).toEqual(['known 2', 'unknownLot 3', 'netDiffers 4', 'tareAbove 5', 'noDay 6', 'twice 8']);
+  });
+
+  it('refuses a weight below 0, a load that no scale takes, a time and a year that cannot be, and a number that is too long', () => {
+    const lines = ['N-1;Marl red;9000;-3000;2026-09-14;', 'N-2;Marl red;-9000;3000;2026-09-14;', 'N-3;Marl red;250000;3000;2026-09-14;', 'N-4;Marl red;9000;3000;2026-09-14;27:10', 'N-5;Marl red;9000;3000;2026-09-14;soon', 'N-6;Marl red;9000;3000;2062-09-14;', `${'N'.repeat(61)};Marl red;9000;3000;2026-09-14;`];
+    const { tickets, problems } = readTickets(`ticket;lot;gross kg;tare kg;date;time\n${lines.join('\n')}\n`, context);
+    expect(tickets).toEqual([]);
+    expect(problems.map(({ code, line }) => [code, line])).toEqual([['noWeight', 2], ['noWeight', 3], ['tooHeavy', 4], ['noTime', 5], ['noTime', 6], ['outOfSeason', 7], ['longNumber', 8]]);
+  });
+
+  it('reads hours of half a day, and takes fruit picked after the season’s last day', () => {
+    const times = ['2:30 PM', '12:05 a.m.', '12:05 pm', '08:15:30', '7h40', ''];
+    const { tickets, problems } = readTickets(`ticket;lot;gross kg;tare kg;date;time\n${times.map((time, at) => `H-${at};Marl red;9000;3000;2027-01-14;${time}`).join('\n')}\n`, context);
+    expect(problems).toEqual([]);
+    expect(tickets.map(({ time }) => time)).toEqual(['14:30', '00:05', '12:05', '08:15', '07:40', '12:00']);
   });
 });
 

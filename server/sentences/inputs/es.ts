@@ -57,6 +57,7 @@ export const es: Record<string, string> = {
   'The lower end of a target is above its upper end.': 'El extremo bajo de un objetivo está por encima del alto.',
   'The lowest temperature is above the highest. Check which is which.': 'La temperatura mínima es mayor que la máxima. Compruebe cuál es cuál.',
   'The tare must be below the gross weight. Check which is which.': 'La tara debe ser menor que el peso bruto. Compruebe cuál es cuál.',
+  'More than 200 t on one ticket. Check the weight and its unit.': 'Más de 200 t en un solo boletín. Revise el peso y su unidad.',
   'This is no time zone; choose one from the list, such as Europe/Lisbon.': 'No es una zona horaria; elija una de la lista, como Europe/Lisbon.',
   'This is no upload.': 'No es un envío de archivo.',
   'This is not an e-mail address.': 'No es una dirección de correo.',

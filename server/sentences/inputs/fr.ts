@@ -57,6 +57,7 @@ export const fr: Record<string, string> = {
   'The lower end of a target is above its upper end.': 'Le bas d’un objectif est au-dessus de son haut.',
   'The lowest temperature is above the highest. Check which is which.': 'La température la plus basse est au-dessus de la plus haute. Vérifiez laquelle est laquelle.',
   'The tare must be below the gross weight. Check which is which.': 'La tare doit être sous le poids brut. Vérifiez lequel est lequel.',
+  'More than 200 t on one ticket. Check the weight and its unit.': 'Plus de 200 t sur un seul bon. Vérifiez le poids et son unité.',
   'This is no time zone; choose one from the list, such as Europe/Lisbon.': 'Ce n’est pas un fuseau horaire ; choisissez-en un dans la liste, par exemple Europe/Lisbon.',
   'This is no upload.': 'Ce n’est pas un envoi de fichier.',
   'This is not an e-mail address.': 'Ce n’est pas une adresse e-mail.',

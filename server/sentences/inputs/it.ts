@@ -57,6 +57,7 @@ export const it: Record<string, string> = {
   'The lower end of a target is above its upper end.': 'L’estremo basso di un obiettivo è sopra l’estremo alto.',
   'The lowest temperature is above the highest. Check which is which.': 'La temperatura più bassa è sopra la più alta. Controllare quale è quale.',
   'The tare must be below the gross weight. Check which is which.': 'La tara deve stare sotto il peso lordo. Controllare quale è quale.',
+  'More than 200 t on one ticket. Check the weight and its unit.': 'Più di 200 t su una sola bolla. Verificare il peso e la sua unità.',
   'This is no time zone; choose one from the list, such as Europe/Lisbon.': 'Questo non è un fuso orario; sceglierne uno dall’elenco, per esempio Europe/Lisbon.',
   'This is no upload.': 'Questo non è un invio di file.',
   'This is not an e-mail address.': 'Questo non è un indirizzo e-mail.',

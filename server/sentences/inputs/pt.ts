@@ -57,6 +57,7 @@ export const pt: Record<string, string> = {
   'The lower end of a target is above its upper end.': 'O extremo baixo de um objetivo está acima do alto.',
   'The lowest temperature is above the highest. Check which is which.': 'A temperatura mínima é maior que a máxima. Verifique qual é qual.',
   'The tare must be below the gross weight. Check which is which.': 'A tara tem de ser menor que o peso bruto. Verifique qual é qual.',
+  'More than 200 t on one ticket. Check the weight and its unit.': 'Mais de 200 t num só talão. Verifique o peso e a unidade.',
   'This is no time zone; choose one from the list, such as Europe/Lisbon.': 'Isto não é um fuso horário; escolha um da lista, como Europe/Lisbon.',
   'This is no upload.': 'Isto não é um envio de ficheiro.',
   'This is not an e-mail address.': 'Isto não é um endereço de e-mail.',

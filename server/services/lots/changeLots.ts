@@ -17,11 +17,13 @@ import { Zoning } from '../../models/Zoning.ts';
 import { findScenario } from './board.ts';
 import { boardOfLot, keepDecision } from './decisions.ts';
 import { runsOf } from './boardGround.ts';
+import { requireFruitDay } from './fruitDay.ts';
 import { requireNoPickStop } from './pickStops.ts';
 import { say } from '../../sentences/say.ts';
 
 export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
   const scenario = await findScenario(access, { scenarioId: input.scenarioId, today });
+  if (input.pickOn !== null) await requireFruitDay(undefined, scenario, input.pickOn);
   return Lot.transaction(async (trx) => {
     const lot = await Lot.query(trx).insert({ ...input, scenarioId: scenario.id, seasonId: scenario.seasonId, estateId: access.estateId, createdBy: access.personId });
     await writeAudit(trx, access, { action: 'lots.create', subjectType: 'lot', subjectId: lot.id, subjectName: input.name, after: input });
@@ -33,6 +35,7 @@ export async function createLot(access: Access, input: z.infer<typeof newLot>, t
 export async function changeLot(access: Access, lotId: string, change: z.infer<typeof lotChange>, version: number): Promise<void> {
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
+    if (change.pickOn) await requireFruitDay(trx, lot, change.pickOn);
     if (change.pickOn) await requireNoPickStop(trx, access, { lotId, pickOn: change.pickOn });
     const { name, pickOn, tankId, crew, wineType, alcoholMethod } = lot;
     await lot.$query(trx).patch({ ...change, version: lot.version + 1 });

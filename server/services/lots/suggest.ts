@@ -18,6 +18,7 @@ import type { SuggestAnswer, SuggestInput } from '../../workers/suggestLots.ts';
 import { findScenario } from './board.ts';
 import { loadBoardGround, type BoardGround } from './boardGround.ts';
 import { roomFrom } from './capacities.ts';
+import { requireFruitDay } from './fruitDay.ts';
 import { addPart } from './changeLots.ts';
 import { copyLots } from './scenarios.ts';
 import { mustPerTonne } from './summariseLot.ts';
@@ -39,6 +40,7 @@ interface FreeZone extends ChoiceZone {
 /** Proposes lots as a what-if of their own, each placing with its reason. The lots in force stay as they are. */
 export async function suggestScenario(access: Access, asked: NewSuggestion, options: { today: string }): Promise<{ id: string }> {
   const live = await findScenario(access, { scenarioId: null, today: options.today });
+  await requireFruitDay(undefined, live, asked.firstDay);
   const factors = await usedFactors(access.estateId);
   const ground = await loadBoardGround(access.estateId, live, factors);
   const kept = ground.lots.filter((lot) => !asked.startOver || lot.state !== 'draft');

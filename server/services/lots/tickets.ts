@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import type { z } from 'zod';
 import { readTickets } from '../../../shared/cellar/ticketTable.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import { kgPerUnit, type MassUnit, type NewTicket, type ticketFile, type TicketReading, type TicketSplit, type TicketView } from '../../../shared/contracts/tickets.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
@@ -11,7 +12,9 @@ import { Lot } from '../../models/Lot.ts';
 import { Person } from '../../models/Person.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
+import { Season } from '../../models/Season.ts';
 import { findScenario } from './board.ts';
+import { requireFruitDay } from './fruitDay.ts';
 import { zonesInLot } from './zonesInLot.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -30,6 +33,7 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     const lot = await Lot.query(trx).findOne({ estateId, id: input.lotId }).forUpdate().throwIfNotFound();
     const scenario = await Scenario.query(trx).findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
     if (!scenario.isLive) throw new Unusable('whatIf', say('ticketOfWhatIf'));
+    await requireFruitDay(trx, lot, dayIn((await Estate.query(trx).findById(estateId).throwIfNotFound()).timeZone, new Date(input.weighedAt)));
     const known = await ScaleTicket.query(trx).where({ estateId }).select('id', 'ticketNo', 'corrects');
     const corrected = input.corrects === null ? null : known.find((ticket) => ticket.id === input.corrects);
     if (corrected === undefined) throw new Unusable('noTicket', say('noTicket'));
@@ -77,7 +81,8 @@ async function importIn(trx: Transaction, access: Access, file: z.infer<typeof t
   const lots = await Lot.query(trx).where({ estateId, scenarioId: scenario.id }).select('id', 'name');
   const known = await ScaleTicket.query(trx).where({ estateId }).select('ticketNo');
   const estate = await Estate.query(trx).findById(estateId).throwIfNotFound();
-  const read = readTickets(file.text, { lots: lots.map(({ id, name }) => ({ id, name })), known: known.map(({ ticketNo }) => ticketNo) }, file);
+  const season = await Season.query(trx).findOne({ estateId, id: scenario.seasonId }).throwIfNotFound();
+  const read = readTickets(file.text, { season, lots: lots.map(({ id, name }) => ({ id, name })), known: known.map(({ ticketNo }) => ticketNo) }, file);
   const view: TicketReading = {
     tickets: read.tickets.map(({ line, ticketNo, lotName, gross, tare, unit, day, netOnly }) => ({ line, ticketNo, lotName, netKg: (gross - tare) * kgPerUnit[unit], day, netOnly })),
     questions: [...read.questions], problems: read.problems.slice(0, shownProblems), kept: 0,

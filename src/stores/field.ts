@@ -35,6 +35,8 @@ export const useFieldStore = defineStore('field', () => {
   const others = ref(0);
   /** What lies on the phone has been looked at; before that nothing is said of it. */
   const isCounted = ref(false);
+  /** The phone's store could not be opened just now, as on a full phone: what was typed before is there and cannot be shown. */
+  const isUnreadable = ref(false);
   const isSending = ref(false);
   const declinedPhotos = shallowRef<readonly KeptPhoto[]>([]);
   /** Rounds that were closed on this phone and of which the office does not know yet. */
@@ -55,7 +57,8 @@ export const useFieldStore = defineStore('field', () => {
   async function count(): Promise<void> {
     const { personId } = owner;
     const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), refusedPhotos(personId), closingsOf(personId)]), null);
-    // A store that cannot be read holds nothing that could be counted; the self-test tells the person.
+    // A store that cannot be read holds nothing that could be counted; the screens say so.
+    isUnreadable.value = held === null;
     if (held === null) return;
     const [mine, theirs, listed, declined, closings] = held;
     // All at once: a count that runs ahead of its list would say that nothing waits beside what still does.
@@ -215,15 +218,23 @@ export const useFieldStore = defineStore('field', () => {
 
   /** Tells the office how this phone stands, at most once a minute; a phone that was reported lost empties itself once all is received. */
   async function checkIn(): Promise<void> {
-    const state = `${waiting.value} ${isReady.value}`;
-    if (owner.estateId === '' || (state === checkedIn.state && Date.now() - checkedIn.at < 60_000)) return;
-    const facts = { deviceId: deviceId(), waiting: waiting.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
-    const answer = await unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts, { withinMs: patienceMs }));
+    const state = `${waiting.value} ${others.value} ${isReady.value}`;
+    // Nobody is told that nothing waits by a phone that cannot look.
+    if (owner.estateId === '' || isUnreadable.value || (state === checkedIn.state && Date.now() - checkedIn.at < 60_000)) return;
+    const answer = await tellOffice();
     if (!answer) return;
     checkedIn = { state, at: Date.now() };
-    if (!answer.isLost || facts.waiting > 0) return;
-    await emptyPhone();
-    isEmptied.value = true;
+    if (!answer.isLost || waiting.value > 0) return;
+    if (others.value > 0) {
+      await sendOthers();
+      await tellOffice();
+    }
+    isEmptied.value = (await unlessStoreFails(emptyPhone(owner.personId).then(() => true))) ?? false;
+  }
+
+  function tellOffice(): Promise<PhoneAnswer | null> {
+    const facts = { deviceId: deviceId(), waiting: waiting.value + others.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
+    return unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts, { withinMs: patienceMs }));
   }
 
   function noteReady(ready: boolean): void {
@@ -231,5 +242,5 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isUnreadable, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
 });

@@ -20,6 +20,10 @@ export async function bagsOfRound(roundId: string): Promise<KeptBag[]> {
   return (await (await fieldDatabase()).getAll('bags')).filter((bag) => bag.roundId === roundId).sort((a, b) => a.at.localeCompare(b.at));
 }
 
+export async function bagsOfPerson(personId: string): Promise<KeptBag[]> {
+  return (await (await fieldDatabase()).getAll('bags')).filter((bag) => bag.personId === personId);
+}
+
 export async function waitingBags(personId: string): Promise<KeptBag[]> {
   return (await (await fieldDatabase()).getAllFromIndex('bags', 'received', 0)).filter((bag) => bag.personId === personId && bag.outcome?.state !== 'refused');
 }

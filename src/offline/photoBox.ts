@@ -15,8 +15,9 @@ export async function countPhotos(personId: string): Promise<number> {
   return (await photosOf(personId)).filter(({ refusal }) => refusal === undefined).length;
 }
 
-export async function refusedPhotos(personId: string): Promise<KeptPhoto[]> {
-  return (await photosOf(personId)).filter(({ refusal }) => refusal !== undefined);
+/** Every photo that a person took with this phone; of one that was received only that it was. */
+export async function allPhotos(personId: string): Promise<KeptPhoto[]> {
+  return (await (await fieldDatabase()).getAll('photos')).filter((photo) => photo.personId === personId);
 }
 
 async function photosOf(personId: string): Promise<KeptPhoto[]> {
@@ -40,8 +41,15 @@ async function sendAll(personId: string): Promise<void> {
       await (await fieldDatabase()).put('photos', { ...photo, refusal: error.message, refusalCode: error.status === 413 ? 'fileTooLarge' : error.code });
       continue;
     }
-    await (await fieldDatabase()).delete('photos', id);
+    await leaveWord(photo);
   }
+}
+
+/** The picture makes room; that it was received stays, so that what was on this phone and what was received add up. */
+async function leaveWord(photo: KeptPhoto): Promise<void> {
+  const database = await fieldDatabase();
+  const { refusal: _refusal, refusalCode: _code, ...rest } = photo;
+  await database.put('photos', { ...rest, picture: new Blob(), received: 1 }).catch(() => database.delete('photos', photo.id));
 }
 
 /** Said of this photo, not of the line or of who is signed in. */

@@ -5,16 +5,16 @@ import type { FieldRound, RoundSummary, WalkStop } from '../../shared/contracts/
 import type { StopVine } from '../../shared/field/walkState.ts';
 import { http } from '../lib/http.ts';
 import { unlessOffline, unlessRefused } from '../lib/unlessOffline.ts';
-import { sendBags } from '../offline/bagBox.ts';
+import { bagsOfPerson, sendBags } from '../offline/bagBox.ts';
 import { addClosing, closingsOf, dropClosing, sendClosings } from '../offline/closings.ts';
 import { deviceId } from '../offline/deviceId.ts';
-import { orNothing, unlessStoreFails, type Entry, type KeptPhoto } from '../offline/fieldDatabase.ts';
+import { orNothing, unlessStoreFails, type Entry, type KeptBag, type KeptPhoto } from '../offline/fieldDatabase.ts';
 import { dropOtherRounds, keepList, keepRound, keptList, keptRound } from '../offline/keptRounds.ts';
 import { emptyPhone } from '../offline/emptyPhone.ts';
 import { addEntries, allEntries, entriesOfRound, sendForOthers, sendWaiting, setAside, takeBack, waitingOfOthers } from '../offline/outbox.ts';
 import { findingEntry, photoEntry, pickEntry, readingEntry, type Found, type Typed } from '../offline/newEntry.ts';
 import { patienceMs } from '../offline/patience.ts';
-import { addPhoto, refusedPhotos, sendPhotos } from '../offline/photoBox.ts';
+import { addPhoto, allPhotos, sendPhotos } from '../offline/photoBox.ts';
 import { pruneReceived } from '../offline/prune.ts';
 import { tellOtherTabs, whenAnotherTabWrites } from '../offline/tabs.ts';
 import { totalWaiting } from '../offline/waiting.ts';
@@ -38,7 +38,8 @@ export const useFieldStore = defineStore('field', () => {
   /** The phone's store could not be opened just now, as on a full phone: what was typed before is there and cannot be shown. */
   const isUnreadable = ref(false);
   const isSending = ref(false);
-  const declinedPhotos = shallowRef<readonly KeptPhoto[]>([]);
+  const photos = shallowRef<readonly KeptPhoto[]>([]);
+  const bags = shallowRef<readonly KeptBag[]>([]);
   /** Rounds that were closed on this phone and of which the office does not know yet. */
   const closedHere = shallowRef<ReadonlySet<string>>(new Set());
   /** This phone was reported lost and holds nothing any more. */
@@ -56,13 +57,13 @@ export const useFieldStore = defineStore('field', () => {
 
   async function count(): Promise<void> {
     const { personId } = owner;
-    const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), refusedPhotos(personId), closingsOf(personId)]), null);
+    const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), allPhotos(personId), bagsOfPerson(personId), closingsOf(personId)]), null);
     // A store that cannot be read holds nothing that could be counted; the screens say so.
     isUnreadable.value = held === null;
     if (held === null) return;
-    const [mine, theirs, listed, declined, closings] = held;
+    const [mine, theirs, listed, taken, closed, closings] = held;
     // All at once: a count that runs ahead of its list would say that nothing waits beside what still does.
-    [waiting.value, others.value, all.value, declinedPhotos.value] = [mine, theirs, listed, declined];
+    [waiting.value, others.value, all.value, photos.value, bags.value] = [mine, theirs, listed, taken, closed];
     closedHere.value = new Set(closings.map(({ roundId }) => roundId));
     isCounted.value = true;
     if (round.value) await show(round.value.id);
@@ -242,5 +243,5 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isUnreadable, isSending, declinedPhotos, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isUnreadable, isSending, photos, bags, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
 });

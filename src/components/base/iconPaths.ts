@@ -9,6 +9,7 @@ export const iconPaths = {
   reserve: 'M6 4v16M12 4h7v16h-7z',
   replant: 'M12 20v-8M12 15c-4 0-6-2-6-6 4 0 6 2 6 6zM12 12c0-4 2-6 6-6 0 4-2 6-6 6zM7 20h10',
   bag: 'M5 3h14v18H5zM5 8h14M9.5 12.5h.01M9.5 12a2 2 0 1 0 .01 0M14.5 14.5a2 2 0 1 0 .01 0',
+  photo: 'M3 7.5h4.5L9 5h6l1.5 2.5H21V19H3zM12 9.5a3.5 3.5 0 1 0 .01 0',
   label: 'M9 5h12v14H9L3 12zM10.5 12h.5',
   post: 'M8 3v17M8 6l9 14M3 20h18',
   gate: 'M3 4v17M21 4v17M3 8h18M3 17h18M4 16.5l16-8',

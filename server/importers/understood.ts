@@ -5,7 +5,16 @@ import type { LonLat, RingLonLat } from '../../shared/geo/coordinates.ts';
 export interface ImportQuestion {
   code: 'reference-system' | 'no-data' | 'layer' | 'columns' | 'axes' | 'decimal-mark' | 'placement';
   text: string;
+  /** Why it is asked, for the screens, which have words of their own for it. */
+  why?: QuestionReason;
   choices: readonly QuestionChoice[];
+}
+
+/** Why something must be asked: a code with its values, and the whole English sentence. */
+export interface QuestionReason {
+  code: 'not-named' | 'no-prj' | 'unusable' | 'table-projection' | 'not-degrees' | 'degrees' | 'impossible' | 'far' | 'value-returns';
+  text: string;
+  params?: Readonly<Record<string, string | number>>;
 }
 
 export interface QuestionChoice {

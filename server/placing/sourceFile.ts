@@ -70,6 +70,7 @@ export function readerQuestionsOf(question: ReaderQuestion, answers: ImportAnswe
       code,
       kind: 'choice',
       reason: question.text,
+      ...(question.why ? { why: { code: question.why.code, params: { ...question.why.params } } } : {}),
       choices: question.choices.map((choice) => ({ value: typedValue(code, choice.value), label: choice.label, outlineLonLat: pairs(choice.outlineLonLat ?? null), ...(choice.sampleLonLat ? { sampleLonLat: pairs(choice.sampleLonLat)! } : {}), distanceKm: choice.distanceKm ?? null, ...(choice.uncertaintyM ? { uncertaintyM: choice.uncertaintyM } : {}) })),
       suggestion: null,
       answer: answer ?? null,

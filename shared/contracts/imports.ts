@@ -89,6 +89,8 @@ export const importQuestion = z.object({
   kind: z.enum(['choice', 'date', 'text']),
   /** Why it is asked, where the file gives the reason; else null. */
   reason: z.string().nullable(),
+  /** The same as a code with its values, for which the screen has words. */
+  why: z.object({ code: z.string(), params: z.record(z.string(), z.union([z.string(), z.number()])) }).optional(),
   choices: z.array(questionChoice),
   /** What the file itself suggests; shown, never taken without a person's answer. */
   suggestion: questionChoice.shape.value,

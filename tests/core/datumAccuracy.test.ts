@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { readFileSync } from 'node:fs';
 import { crsDefinition } from '../../shared/geo/crsDefinitions.ts';
 import { datumShiftAccuracyM } from '../../shared/geo/datumAccuracy.ts';
-import { referenceQuestion } from '../../server/importers/reference/candidates.ts';
+import { referenceChoices } from '../../server/importers/reference/candidates.ts';
 import { datumUncertaintyM, datumWarning, toLonLat } from '../../server/importers/reference/referenceSystem.ts';
 import { datumShift } from '../../server/importers/reference/datums.ts';
 
@@ -32,7 +32,7 @@ describe('how far a layer on an old datum may lie aside', () => {
     const reference = { epsg: 24879, name: psad.name, definition: psad.proj4, unitM: 1, from: 'file' as const };
     expect(datumWarning(reference)).toMatchObject({ code: 'datum', params: { uncertaintyM: 120 } });
     const [lon, lat] = toLonLat(reference)([340_000, 6_250_000])!;
-    const { choices } = referenceQuestion([[340_000, 6_250_000], [340_100, 6_250_100]], [lon, lat], '');
+    const choices = referenceChoices([[340_000, 6_250_000], [340_100, 6_250_100]], [lon, lat]);
     expect(choices.find(({ value }) => value === '24879')?.uncertaintyM).toBe(120);
     // Among places as near as each other today's system stands first.
     expect(choices[0]!.value).toBe('32719');

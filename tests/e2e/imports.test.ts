@@ -126,7 +126,7 @@ describe('a folder of files', () => {
 
   it('a table with its axes the wrong way round is put right after it was confirmed', async () => {
     const { page, close } = await openDesk();
-    await answer(page, folder.swapped.name, { 'Swap latitude and longitude?': 'yes, swap them', 'What is it?': 'Soil conductivity', 'Which field holds the value?': /^EC \(mS\/m\)/, 'In which unit?': 'mS/m', 'When was it taken?': '2026-03-02', 'Was it driven between steel-trellised rows?': 'yes' });
+    await answer(page, folder.swapped.name, { 'Swap latitude and longitude?': 'A: yes, swap them', 'What is it?': 'Soil conductivity', 'Which field holds the value?': /^EC \(mS\/m\)/, 'In which unit?': 'mS/m', 'When was it taken?': '2026-03-02', 'Was it driven between steel-trellised rows?': 'yes' });
     const survey = await layer(page, 'survey');
     expect(survey.type).toBe('conductivity');
     expect(survey.statistics.mean).toBeGreaterThan(20);

@@ -96,7 +96,7 @@ function place({ kept, x, y }: PositionReading, columns: PositionColumns, option
   const reference = options.answers?.epsg !== undefined ? referenceFromAnswer(options.answers.epsg) : degrees ? referenceFromEpsg(4326, 'format') : null;
   const frame = reference?.unitM === null ? 'lonlat' : 'projected';
   if (reference === null) {
-    questions.push(referenceQuestion(box, options.estateLonLat ?? null, 'Its positions are in a map projection that the table does not name.'));
+    questions.push(referenceQuestion(box, options.estateLonLat ?? null, { code: 'table-projection', text: 'Its positions are in a map projection that the table does not name.' }));
     return { frame, reference, named: null, lonLat: kept.map(() => null), questions, warnings };
   }
   if (columns.frame === 'projected' && frame === 'lonlat' && options.answers?.epsg === undefined) warnings.push({ code: 'degrees-assumed', text: 'Its positions are small enough to be degrees and are read as longitude and latitude (WGS 84). Check them on the map.' });

@@ -1,10 +1,10 @@
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
 import { ImportProblem, naming } from '../importProblem.ts';
-import { referenceQuestion } from '../reference/candidates.ts';
+import { referenceQuestion, unusableReason } from '../reference/candidates.ts';
 import { distanceKm } from '../reference/distance.ts';
 import { checkPlacement } from '../reference/placement.ts';
 import { datumWarning, referenceFromAnswer, referenceFromText } from '../reference/referenceSystem.ts';
-import type { ImportQuestion, ImportWarning, PixelTransform, RasterUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
+import type { ImportQuestion, ImportWarning, PixelTransform, QuestionReason, RasterUnderstood, ReadOptions, ReferenceSystem } from '../understood.ts';
 import { readBands } from './bandTags.ts';
 import { referenceFromGeoKeys } from './geoKeyReference.ts';
 import type { OpenRaster } from './openRaster.ts';
@@ -107,7 +107,7 @@ function referenceOf(raster: OpenRaster, { options, outline, questions, warnings
   const text = options.answers?.projectionText ?? options.projectionFileText ?? null;
   const fromText = text === null ? null : referenceFromText(text, 'projection file');
   if (fromText !== null && !('reason' in fromText)) return fromText;
-  const why = said.kind === 'none' ? 'The file does not say which reference system its coordinates are in.' : `The file names "${said.name}", which cannot be used because ${said.reason}.`;
+  const why: QuestionReason = said.kind === 'none' ? { code: 'not-named', text: 'The file does not say which reference system its coordinates are in.' } : unusableReason('The file', said);
   questions.push(referenceQuestion(outline, options.estateLonLat ?? null, why));
   return null;
 }

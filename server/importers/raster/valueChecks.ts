@@ -77,6 +77,7 @@ function voidQuestion({ value, share }: { value: number; share: number }): Impor
   return {
     code: 'no-data',
     text: `${percent(share)} of its pixels have the value ${shown}, and the file has no mark for missing values. Does ${shown} mean that nothing was measured there?`,
+    why: { code: 'value-returns', text: `${percent(share)} of its pixels have the value ${shown}, and the file has no mark for missing values.`, params: { percent: Number((share * 100).toPrecision(2)), value: shown } },
     choices: [
       { value: String(value), label: `Yes, ${shown} means missing` },
       { value: 'none', label: `No, ${shown} is a measured value` },

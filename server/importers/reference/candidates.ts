@@ -1,6 +1,6 @@
 import { candidateCodes, crsDefinition } from '../../../shared/geo/crsDefinitions.ts';
 import type { LonLat, RingLonLat } from '../../../shared/geo/coordinates.ts';
-import type { ImportQuestion, QuestionChoice } from '../understood.ts';
+import type { ImportQuestion, QuestionChoice, QuestionReason } from '../understood.ts';
 import { distanceKm } from './distance.ts';
 import { referenceFromEpsg, toLonLat } from './referenceSystem.ts';
 
@@ -18,9 +18,19 @@ type XYPair = readonly [number, number];
  * The question which reference system a file has: candidates by distance from the estate, each with the outline it
  * would give. `outline` is in the file's own coordinates. Nothing is chosen here: the file alone cannot tell.
  */
-export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonLat | null, why: string): ImportQuestion {
-  const choices = estateLonLat === null ? plausible(outline) : nearest(outline, estateLonLat);
-  return { code: 'reference-system', text: `${why} Which reference system are its coordinates in?`, choices };
+export function referenceQuestion(outline: readonly XYPair[], estateLonLat: LonLat | null, why: QuestionReason): ImportQuestion {
+  const choices = referenceChoices(outline, estateLonLat);
+  return { code: 'reference-system', text: `${why.text} Which reference system are its coordinates in?`, why, choices };
+}
+
+/** Systems that the coordinates may be in, nearest to the estate first. */
+export function referenceChoices(outline: readonly XYPair[], estateLonLat: LonLat | null): QuestionChoice[] {
+  return estateLonLat === null ? plausible(outline) : nearest(outline, estateLonLat);
+}
+
+/** Why it must be asked: a system is named that cannot be used. `reason` is a clause that follows "because". */
+export function unusableReason(names: string, { name, reason }: { name: string; reason: string }): QuestionReason {
+  return { code: 'unusable', text: `${names} names "${name}", which cannot be used because ${reason}.`, params: { name, reason } };
 }
 
 function nearest(outline: readonly XYPair[], estate: LonLat): QuestionChoice[] {

@@ -1,6 +1,6 @@
 import type { LonLat } from '../../../shared/geo/coordinates.ts';
 import type { ImportQuestion, ImportWarning, ReadOptions, ReferenceSystem } from '../understood.ts';
-import { looksLikeDegrees, referenceQuestion } from './candidates.ts';
+import { looksLikeDegrees, referenceChoices, referenceQuestion } from './candidates.ts';
 import { distanceKm } from './distance.ts';
 import { toLonLat } from './referenceSystem.ts';
 
@@ -27,7 +27,8 @@ export function checkPlacement(outline: readonly XYPair[], reference: ReferenceS
   const isPlaced = ring.every((position) => position !== null);
   const [x, y] = outline[0] ?? [NaN, NaN];
   if (!isPlaced || (reference.unitM !== null && looksLikeDegrees(outline))) {
-    const why = `${reference.from === 'answer' ? 'Taken as' : 'The file says it is in'} ${reference.name}, ${reference.from === 'answer' ? '' : 'but '}its coordinates (${short(x)}, ${short(y)}) ${isPlaced ? 'look like degrees' : 'cannot be of that system'}.`;
+    const text = `${reference.from === 'answer' ? 'Taken as' : 'The file says it is in'} ${reference.name}, ${reference.from === 'answer' ? '' : 'but '}its coordinates (${short(x)}, ${short(y)}) ${isPlaced ? 'look like degrees' : 'cannot be of that system'}.`;
+    const why = { code: isPlaced ? ('degrees' as const) : ('impossible' as const), text, params: { name: reference.name, x: short(x), y: short(y) } };
     return { outlineLonLat: null, questions: [referenceQuestion(outline, estateLonLat, why)], warnings: [] };
   }
   if (estateLonLat === null) return { outlineLonLat: ring, questions: [], warnings: [] };
@@ -39,8 +40,8 @@ export function checkPlacement(outline: readonly XYPair[], reference: ReferenceS
     return { outlineLonLat: ring, questions: [], warnings: [{ code: 'far-from-estate', text: `${text} Check that it is the right file and that its reference system is the one it names.`, params: { km: shown } }] };
   }
   const keep = { value: 'keep', label: `It does lie there (${reference.name})`, outlineLonLat: ring, distanceKm: shown };
-  const nearby = referenceQuestion(outline, estateLonLat, '').choices.filter((choice) => (choice.distanceKm ?? Infinity) < CONFIRM_KM);
-  return { outlineLonLat: ring, questions: [{ code: 'placement', text: `${text} Is that right, or are its coordinates in another reference system than ${reference.name}?`, choices: [keep, ...nearby] }], warnings: [] };
+  const nearby = referenceChoices(outline, estateLonLat).filter((choice) => (choice.distanceKm ?? Infinity) < CONFIRM_KM);
+  return { outlineLonLat: ring, questions: [{ code: 'placement', text: `${text} Is that right, or are its coordinates in another reference system than ${reference.name}?`, why: { code: 'far', text, params: { km: shown, name: reference.name } }, choices: [keep, ...nearby] }], warnings: [] };
 }
 
 /** From the estate to the nearest point of the box around the positions; 0 inside. */

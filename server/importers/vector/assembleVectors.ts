@@ -6,7 +6,7 @@ import { referenceQuestion } from '../reference/candidates.ts';
 import { evenly, withSample } from '../reference/ghostSample.ts';
 import { checkPlacement } from '../reference/placement.ts';
 import { datumWarning, referenceFromAnswer, toLonLat } from '../reference/referenceSystem.ts';
-import type { GeometryRepair, ImportQuestion, ImportWarning, ReadOptions, ReferenceSystem, VectorLayer, VectorUnderstood } from '../understood.ts';
+import type { GeometryRepair, ImportQuestion, ImportWarning, QuestionReason, ReadOptions, ReferenceSystem, VectorLayer, VectorUnderstood } from '../understood.ts';
 import { axesQuestion } from '../reference/axesQuestion.ts';
 import { cleanGeometry, noNotes } from './cleanGeometry.ts';
 import { describeField } from '../describeFields.ts';
@@ -21,7 +21,7 @@ export interface AssembleInputs {
   /** The system the file names; null when it names none. */
   reference: ReferenceSystem | null;
   /** Why the system is missing, as a sentence. */
-  whyNoReference: string;
+  whyNoReference: QuestionReason | null;
   options: ReadOptions;
   warnings: readonly ImportWarning[];
   questions?: readonly ImportQuestion[];
@@ -40,7 +40,7 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const swapped = reference === null ? null : axesQuestion(outline, reference, options);
   if (swapped !== null) questions.push(swapped);
   const placement = reference === null ? null : checkPlacement(swapIf(outline, options), reference, options);
-  if (reference === null) questions.push(referenceQuestion(outline, options.estateLonLat ?? null, whyNoReference));
+  if (reference === null) questions.push(referenceQuestion(outline, options.estateLonLat ?? null, whyNoReference ?? unnamed));
   else if (swapped === null) questions.push(...(placement?.questions ?? []));
   const sample = evenly(cleaned.flatMap(({ features }) => features.flatMap(({ geometry }) => someOf(geometry))).map((position) => (swapped === null ? swapPair(position, options) : position)));
   warnings.push(...(placement?.warnings ?? []), ...noteWarnings(notes));
@@ -56,6 +56,8 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   warnings.push(...repairs.map(repairWarning));
   return { kind: 'vector', layers: out, reference: usable, epsg: usable?.epsg ?? null, repairs, questions: withSample(questions, sample, reference), warnings };
 }
+
+const unnamed: QuestionReason = { code: 'not-named', text: 'The file does not say which reference system its coordinates are in.' };
 
 /** UTM, in which areas are measured, ends at 80 degrees south and 84 north. */
 const farthestLatitude = 80;

@@ -1,4 +1,4 @@
-import type { ImportQuestion, ImportWarning, ReferenceSystem } from '../understood.ts';
+import type { ImportQuestion, ImportWarning, QuestionReason, ReferenceSystem } from '../understood.ts';
 import type { Geometry } from 'geojson';
 
 /** A layer as a format's reader finds it, in the coordinates of the file. */
@@ -16,8 +16,8 @@ export interface RawFeature {
 export interface LayersRead {
   layers: readonly RawLayer[];
   reference: ReferenceSystem | null;
-  /** Why the system is missing, as a sentence. */
-  whyNoReference: string;
+  /** Why the system is missing; null where it is known. */
+  whyNoReference: QuestionReason | null;
   warnings: ImportWarning[];
   questions?: ImportQuestion[];
 }

@@ -1,14 +1,15 @@
 import type { Geometry } from 'geojson';
 import { ImportProblem } from '../importProblem.ts';
 import { limits } from '../limits.ts';
+import { unusableReason } from '../reference/candidates.ts';
 import { referenceFromEpsg, referenceFromText } from '../reference/referenceSystem.ts';
-import type { ImportWarning, ReferenceSystem } from '../understood.ts';
+import type { ImportWarning, QuestionReason, ReferenceSystem } from '../understood.ts';
 import type { RawFeature, RawLayer } from './rawLayer.ts';
 
 export interface GeoJsonReading {
   layers: RawLayer[];
   reference: ReferenceSystem | null;
-  whyNoReference: string;
+  whyNoReference: QuestionReason | null;
   warnings: ImportWarning[];
 }
 
@@ -98,15 +99,15 @@ function safe(properties: Record<string, unknown>): Record<string, unknown> {
   return Object.fromEntries(Object.entries(properties).map(([name, value]) => [['__proto__', 'constructor', 'prototype'].includes(name) ? `${name} (attribute)` : name, value]));
 }
 
-function referenceOf(root: Record<string, unknown>, features: readonly RawFeature[], warnings: ImportWarning[]): { reference: ReferenceSystem | null; why: string } {
+function referenceOf(root: Record<string, unknown>, features: readonly RawFeature[], warnings: ImportWarning[]): { reference: ReferenceSystem | null; why: QuestionReason | null } {
   const named = crsName(root['crs']);
   const degrees = features.every(({ geometry }) => geometry === null || firstPositions(geometry).every(([x, y]) => Math.abs(x) <= 180 && Math.abs(y) <= 180));
-  if (named === null) return degrees ? { reference: referenceFromEpsg(4326, 'format'), why: '' } : { reference: null, why: 'GeoJSON has its coordinates in degrees, but those of this file are not.' };
-  if (/CRS84$|EPSG:{1,2}4326$/i.test(named)) return { reference: referenceFromEpsg(4326, 'file'), why: '' };
+  if (named === null) return degrees ? { reference: referenceFromEpsg(4326, 'format'), why: null } : { reference: null, why: { code: 'not-degrees', text: 'GeoJSON has its coordinates in degrees, but those of this file are not.' } };
+  if (/CRS84$|EPSG:{1,2}4326$/i.test(named)) return { reference: referenceFromEpsg(4326, 'file'), why: null };
   const reading = referenceFromText(named, 'file');
-  if ('reason' in reading) return { reference: null, why: `The file names the reference system "${named.slice(0, 60)}", which cannot be used because ${reading.reason}.` };
+  if ('reason' in reading) return { reference: null, why: unusableReason('The file', { name: named.slice(0, 60), reason: reading.reason }) };
   warnings.push({ code: 'crs-member', text: `It names ${reading.name} in an old way that GeoJSON no longer has; its coordinates are read in that system.`, params: { name: reading.name } });
-  return { reference: reading, why: '' };
+  return { reference: reading, why: null };
 }
 
 function crsName(crs: unknown): string | null {

@@ -2,8 +2,9 @@ import type { Geometry } from 'geojson';
 import type { Database } from 'sql.js';
 import { ImportProblem } from '../importProblem.ts';
 import { limits } from '../limits.ts';
+import { unusableReason } from '../reference/candidates.ts';
 import { referenceFromEpsg, referenceFromText } from '../reference/referenceSystem.ts';
-import type { ImportQuestion, ImportWarning, ReferenceSystem } from '../understood.ts';
+import type { ImportQuestion, ImportWarning, QuestionReason, ReferenceSystem } from '../understood.ts';
 import { openDatabaseFile, rowsOf, tableColumns } from './databaseFile.ts';
 import type { RawFeature, RawLayer } from './rawLayer.ts';
 import { readWellKnownBinary } from './wellKnownBinary.ts';
@@ -11,7 +12,7 @@ import { readWellKnownBinary } from './wellKnownBinary.ts';
 export interface GeoPackageReading {
   layers: RawLayer[];
   reference: ReferenceSystem | null;
-  whyNoReference: string;
+  whyNoReference: QuestionReason | null;
   warnings: ImportWarning[];
   questions: ImportQuestion[];
 }
@@ -65,7 +66,7 @@ function featureTables(database: Database): { stored: FeatureTable[]; skipped: s
 interface TableReading {
   layer: RawLayer;
   reference: ReferenceSystem | null;
-  whyNoReference: string;
+  whyNoReference: QuestionReason | null;
   warnings: ImportWarning[];
 }
 
@@ -111,11 +112,11 @@ function shapeOf(blob: Uint8Array, lost: { curved: number; damaged: number }): G
   }
 }
 
-function systemOf(database: Database, systemId: number): { reference: ReferenceSystem | null; whyNoReference: string } {
+function systemOf(database: Database, systemId: number): { reference: ReferenceSystem | null; whyNoReference: QuestionReason | null } {
   const row = rowsOf(database, `select srs_name, organization, organization_coordsys_id, definition from gpkg_spatial_ref_sys where srs_id = ${Number.isInteger(systemId) ? systemId : 'null'}`)[0];
-  if (row === undefined || systemId === 0 || systemId === -1) return { reference: null, whyNoReference: 'The file does not say which reference system its layer has.' };
+  if (row === undefined || systemId === 0 || systemId === -1) return { reference: null, whyNoReference: { code: 'not-named', text: 'The file does not say which reference system its layer has.' } };
   const [name, organization, code, definition] = row;
   const shipped = String(organization).toUpperCase() === 'EPSG' ? referenceFromEpsg(Number(code), 'file') : null;
   const reading = shipped ?? referenceFromText(String(definition), 'file');
-  return 'reason' in reading ? { reference: null, whyNoReference: `The file names "${String(name).slice(0, 80)}", which cannot be used because ${reading.reason}.` } : { reference: reading, whyNoReference: '' };
+  return 'reason' in reading ? { reference: null, whyNoReference: unusableReason('The file', { name: String(name).slice(0, 80), reason: reading.reason }) } : { reference: reading, whyNoReference: null };
 }

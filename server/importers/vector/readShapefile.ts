@@ -2,8 +2,9 @@ import type { Geometry, Position } from 'geojson';
 import { parseShp } from 'shpjs';
 import type { ZipArchive } from '../archive/zipArchive.ts';
 import { ImportProblem } from '../importProblem.ts';
+import { unusableReason } from '../reference/candidates.ts';
 import { referenceFromText } from '../reference/referenceSystem.ts';
-import type { ImportWarning, ReferenceSystem } from '../understood.ts';
+import type { ImportWarning, QuestionReason, ReferenceSystem } from '../understood.ts';
 import { readDbf, type DbfTable } from './dbfTable.ts';
 import { placeHoles } from './placeHoles.ts';
 import type { RawFeature, RawLayer } from './rawLayer.ts';
@@ -12,7 +13,7 @@ import { checkShapeRecords } from './shapeRecords.ts';
 export interface ShapefileReading {
   layer: RawLayer;
   reference: ReferenceSystem | null;
-  whyNoReference: string;
+  whyNoReference: QuestionReason | null;
   warnings: ImportWarning[];
 }
 
@@ -50,10 +51,10 @@ function readTable(dbf: Uint8Array | null, cpg: Uint8Array | null, { name, shape
   }
 }
 
-function readProjection(prj: Uint8Array | null, name: string): { reference: ReferenceSystem | null; whyNoReference: string } {
-  if (prj === null) return { reference: null, whyNoReference: `"${name}.prj", which names the reference system, is missing from the archive.` };
+function readProjection(prj: Uint8Array | null, name: string): { reference: ReferenceSystem | null; whyNoReference: QuestionReason | null } {
+  if (prj === null) return { reference: null, whyNoReference: { code: 'no-prj', text: `"${name}.prj", which names the reference system, is missing from the archive.`, params: { part: `${name}.prj` } } };
   const reading = referenceFromText(new TextDecoder().decode(prj.subarray(0, 20_000)), 'projection file');
-  return 'reason' in reading ? { reference: null, whyNoReference: `"${name}.prj" names "${reading.name}", which cannot be used because ${reading.reason}.` } : { reference: reading, whyNoReference: '' };
+  return 'reason' in reading ? { reference: null, whyNoReference: unusableReason(`"${name}.prj"`, reading) } : { reference: reading, whyNoReference: null };
 }
 
 function withoutEmptyParts(geometry: Geometry): Geometry {

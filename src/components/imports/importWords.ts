@@ -56,10 +56,20 @@ export function noteWords(note: ImportNote, kind: 'problem' | 'note', { t, te, f
   const isExact = kind === 'problem' && note.params.why !== undefined && te(why);
   const key = isExact ? why : `imports.${kind}.${note.code}`;
   if (!te(key)) return { text: note.text, detail: null };
-  const named = Object.fromEntries(Object.entries(note.params).map(([name, value]) => [name, typeof value === 'number' ? format.number(value, Number.isInteger(value) ? 0 : 2) : value]));
+  const named = shownParams(note.params, format);
   const count = note.params.count ?? note.params.shapes;
   return { text: typeof count === 'number' ? t(key, named, count) : t(key, named), detail: kind === 'problem' && !isExact ? note.text : null };
 }
+
+/** Why a question is asked, in the reader's language where we have the sentence. Null where the question says enough. */
+export function reasonWords(question: ImportQuestion, { t, te, format }: Words): string | null {
+  const why = question.why && te(`imports.askWhy.${question.why.code}`) ? question.why : null;
+  if (why) return t(`imports.askWhy.${why.code}`, shownParams(why.params, format));
+  const key = `imports.ask.${question.code}Why`;
+  return te(key) ? t(key, {}) : question.reason;
+}
+
+const shownParams = (params: ImportNote['params'], format: Format) => Object.fromEntries(Object.entries(params).map(([name, value]) => [name, typeof value === 'number' ? format.number(value, Number.isInteger(value) ? 0 : 2) : value]));
 
 /** The words of an answer: the file's own, or ours for the value. */
 export function choiceWords(question: Pick<ImportQuestion, 'code'>, choice: QuestionChoice, { t, te, format }: Words): string {

@@ -55,13 +55,14 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'ghost-line-other', type: 'line', source: 'ghosts', filter: ['all', ['!', ['get', 'chosen']], ['!', ['has', 'dots']]], paint: { 'line-color': ink.amber, 'line-width': 1.5, 'line-dasharray': [1.33, 2.67] } },
     { id: 'ghost-line', type: 'line', source: 'ghosts', filter: ['all', ['get', 'chosen'], ['!', ['has', 'dots']]], paint: { 'line-color': ink.sky, 'line-width': 2, 'line-dasharray': [4, 2] } },
     { id: 'ghost-dots', type: 'circle', source: 'ghosts', filter: ['has', 'dots'], paint: { 'circle-radius': ['case', ['get', 'chosen'], 2.5, 1.5], 'circle-color': ['case', ['get', 'chosen'], ink.sky, ink.amber], 'circle-opacity': ['case', ['get', 'chosen'], 1, 0.7], 'circle-stroke-color': ink.ground, 'circle-stroke-width': ['case', ['get', 'chosen'], 1, 0] }, layout: { 'circle-sort-key': ['case', ['get', 'chosen'], 1, 0] } },
-    { id: 'ghost-flags', type: 'symbol', source: 'ghostFlags', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-anchor': 'top-left' } },
     { id: 'route-edge', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ground, 'line-width': 6 } },
     { id: 'route', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ink, 'line-width': 2.5 } },
     { id: 'row-numbers', type: 'symbol', source: 'rowEnds', minzoom: 17.5, layout: { 'text-field': ['get', 'label'], 'text-font': label, 'text-size': 11, 'text-anchor': 'center' }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.land, 'text-halo-width': 2 } },
     { id: 'pills', type: 'symbol', source: 'pills', minzoom: 13.5, layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-ignore-placement': true } },
     { id: 'points', type: 'symbol', source: 'points', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'text-field': ['get', 'text'], 'text-font': label, 'text-size': 11, 'text-anchor': 'left', 'text-offset': [0.9, 0], 'text-optional': true }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.ground, 'text-halo-width': 2 } },
     { id: 'names', type: 'symbol', source: 'names', minzoom: 12, layout: { 'text-field': ['get', 'name'], 'text-font': label, 'text-size': 13, 'text-anchor': 'bottom', 'text-offset': [0, -0.45], 'text-rotate': ['get', 'turn'], 'text-rotation-alignment': 'map', 'text-allow-overlap': false, 'text-padding': 4 }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.land, 'text-halo-width': 3.2 } },
+    // Outside the corner and above names: a letter under a name tells nothing.
+    { id: 'ghost-flags', type: 'symbol', source: 'ghostFlags', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-ignore-placement': true, 'icon-anchor': 'bottom-right' } },
   ];
 }
 

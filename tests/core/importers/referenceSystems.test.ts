@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { crsDefinition } from '../../../shared/geo/crsDefinitions.ts';
-import { referenceQuestion } from '../../../server/importers/reference/candidates.ts';
+import { referenceChoices } from '../../../server/importers/reference/candidates.ts';
 import { checkPlacement } from '../../../server/importers/reference/placement.ts';
 import { distanceKm } from '../../../server/importers/reference/distance.ts';
 import { referenceFromEpsg, referenceFromText, reprojectionTo, toLonLat } from '../../../server/importers/reference/referenceSystem.ts';
@@ -106,7 +106,7 @@ describe('a file without a reference system', () => {
   const outline = [[500000, 4950000], [500100, 4950000], [500100, 4950100], [500000, 4950100], [500000, 4950000]] as const;
 
   it('gets candidates by distance from the estate, the true one first, each with an outline', () => {
-    const { choices } = referenceQuestion(outline, [3.001, 44.703], 'Why?');
+    const choices = referenceChoices(outline, [3.001, 44.703]);
     expect(choices[0]).toMatchObject({ value: '32631', distanceKm: 0.1 });
     expect(choices[0]!.outlineLonLat).toHaveLength(5);
     expect(choices.length).toBeLessThanOrEqual(8);
@@ -114,8 +114,8 @@ describe('a file without a reference system', () => {
   });
 
   it('gets no candidate out of thin air when the place of the estate is unknown', () => {
-    expect(referenceQuestion(outline, null, 'Why?').choices.map(({ value }) => value)).toEqual(['3857']);
-    expect(referenceQuestion([[3, 44], [3.1, 44]], null, 'Why?').choices.map(({ value }) => value)).toEqual(['4326']);
+    expect(referenceChoices(outline, null).map(({ value }) => value)).toEqual(['3857']);
+    expect(referenceChoices([[3, 44], [3.1, 44]], null).map(({ value }) => value)).toEqual(['4326']);
   });
 });
 
@@ -128,13 +128,15 @@ describe('placement', () => {
     expect(at(3.001)).toMatchObject({ questions: [], warnings: [] });
     // 0.1 degrees of longitude at 44.7° N are 7.9 km on a sphere of 6371 km.
     expect(at(3.101).warnings[0]).toMatchObject({ code: 'far-from-estate', params: { km: 7.9 } });
-    expect(at(5.5).questions[0]).toMatchObject({ code: 'placement' });
+    // 2.4987 degrees of longitude at 44.7° N are 197.4 km along the great circle.
+    expect(at(5.5).questions[0]).toMatchObject({ code: 'placement', why: { code: 'far', params: { km: 197, name: utm.name } } });
   });
 
   it('numbers of another system become a question with the right one among the answers', () => {
     const { outlineLonLat, questions } = checkPlacement(outline, referenceFromEpsg(4326, 'file')!, { estateLonLat: [3.001, 44.703] });
     expect(outlineLonLat).toBeNull();
     expect(questions[0]!.choices[0]!.value).toBe('32631');
+    expect(questions[0]!.why).toMatchObject({ code: 'impossible', params: { x: '500000', y: '4950000' } });
   });
 });
 

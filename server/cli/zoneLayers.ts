@@ -38,10 +38,14 @@ export async function readLayer(block: Block, argument: LayerArgument, { layerWe
   const factor = factorOf(argument);
   const own = factor === 1 ? cells.slice() : cells.map((value) => value * factor);
   const type = layerType(kind === 'class' ? 'soilClass' : argument.type);
-  for (let cell = 0; cell < own.length; cell++) if (!(block.grid.share[cell]! > 0)) own[cell] = NaN;
+  leaveOutside(block.grid, own);
   refuseImpossible(argument, own);
   const weight = weightOf(argument) ?? (layerWeights === 'equal' ? 1 : null);
   return { layer: { id: argument.id, type: type.id, role: type.role, kind, cells: own, weight }, notes };
+}
+
+function leaveOutside({ share }: Grid, cells: Cells): void {
+  for (let cell = 0; cell < cells.length; cell++) if (!(share[cell]! > 0)) cells[cell] = NaN;
 }
 
 /** Told by the first bytes, not by the name. */

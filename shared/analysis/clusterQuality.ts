@@ -33,24 +33,33 @@ export function totalSquares({ values, count, dimensions }: PointTable): number 
 
 /** Means, sizes and sums of squares of a labelled table; `total` where it is known already. */
 export function describePartition(points: PointTable, labels: ArrayLike<number>, k: number, total = totalSquares(points)): Partition {
-  const { values, count, dimensions } = points;
+  const { dimensions } = points;
   const means = new Float64Array(k * dimensions);
   const sizes = new Float64Array(k);
+  addPoints(points, labels, { sizes, sums: means });
+  for (let zone = 0; zone < k; zone++) for (let f = 0; f < dimensions; f++) means[zone * dimensions + f] = means[zone * dimensions + f]! / sizes[zone]!;
+  const withinByZone = squaresByZone(points, labels, means, k);
+  return { means, sizes, withinByZone, within: withinByZone.reduce((sum, part) => sum + part, 0), total };
+}
+
+function addPoints({ values, count, dimensions }: PointTable, labels: ArrayLike<number>, { sizes, sums }: { sizes: Float64Array; sums: Float64Array }): void {
   for (let point = 0; point < count; point++) {
     const zone = labels[point]!;
     sizes[zone]! += 1;
-    for (let f = 0; f < dimensions; f++) means[zone * dimensions + f]! += values[point * dimensions + f]!;
+    for (let f = 0; f < dimensions; f++) sums[zone * dimensions + f]! += values[point * dimensions + f]!;
   }
-  for (let zone = 0; zone < k; zone++) for (let f = 0; f < dimensions; f++) means[zone * dimensions + f] = means[zone * dimensions + f]! / sizes[zone]!;
-  const withinByZone = new Float64Array(k);
+}
+
+function squaresByZone({ values, count, dimensions }: PointTable, labels: ArrayLike<number>, means: Float64Array, k: number): Float64Array {
+  const squares = new Float64Array(k);
   for (let point = 0; point < count; point++) {
     const zone = labels[point]!;
     for (let f = 0; f < dimensions; f++) {
       const difference = values[point * dimensions + f]! - means[zone * dimensions + f]!;
-      withinByZone[zone]! += difference * difference;
+      squares[zone]! += difference * difference;
     }
   }
-  return { means, sizes, withinByZone, within: withinByZone.reduce((sum, part) => sum + part, 0), total };
+  return squares;
 }
 
 /** Share of the total sum of squares between zones, 0…1 (R²; Dobermann et al. 2003 call 1 − R² the relative variance left). */
@@ -70,15 +79,11 @@ export function calinskiHarabasz({ within, total, sizes }: Partition): number {
  * means (Davies & Bouldin 1979). Smaller is better; NaN for one zone.
  */
 export function daviesBouldin(points: PointTable, labels: ArrayLike<number>, partition: Partition): number {
-  const { values, count, dimensions } = points;
+  const { dimensions } = points;
   const { means, sizes } = partition;
   const k = sizes.length;
   if (k < 2) return NaN;
-  const spread = new Float64Array(k);
-  for (let point = 0; point < count; point++) {
-    const zone = labels[point]!;
-    spread[zone] = spread[zone]! + distanceBetween(values, point, means, zone, dimensions) / sizes[zone]!;
-  }
+  const spread = spreadByZone(points, labels, partition);
   let sum = 0;
   for (let a = 0; a < k; a++) {
     let worst = 0;
@@ -86,6 +91,15 @@ export function daviesBouldin(points: PointTable, labels: ArrayLike<number>, par
     sum += worst;
   }
   return sum / k;
+}
+
+function spreadByZone({ values, count, dimensions }: PointTable, labels: ArrayLike<number>, { means, sizes }: Partition): Float64Array {
+  const spread = new Float64Array(sizes.length);
+  for (let point = 0; point < count; point++) {
+    const zone = labels[point]!;
+    spread[zone]! += distanceBetween(values, point, means, zone, dimensions) / sizes[zone]!;
+  }
+  return spread;
 }
 
 function distanceBetween(a: Float64Array, rowA: number, b: Float64Array, rowB: number, dimensions: number): number {

@@ -23,16 +23,18 @@ export function cellsPerLabel(labels: Labels): Int32Array {
 export function meanPerLabel(labels: Labels, layer: Cells): Float64Array {
   const counts = new Int32Array(256);
   const sums = new Float64Array(256);
-  let highest = 0;
+  addPerLabel(labels, layer, { counts, sums });
+  return sums.slice(0, highestLabel(labels) + 1).map((sum, label) => (counts[label] === 0 ? NaN : sum / counts[label]!));
+}
+
+function addPerLabel(labels: Labels, layer: Cells, { counts, sums }: { counts: Int32Array; sums: Float64Array }): void {
   for (let cell = 0; cell < labels.length; cell++) {
-    const label = labels[cell]!;
-    if (label > highest) highest = label;
     const value = layer[cell]!;
     if (Number.isNaN(value)) continue;
-    counts[label]!++;
+    const label = labels[cell]!;
+    counts[label]! += 1;
     sums[label]! += value;
   }
-  return sums.slice(0, highest + 1).map((sum, label) => (counts[label] === 0 ? NaN : sum / counts[label]!));
 }
 
 /** Labels under other numbers: `numbers[old]` is the new number; 0 stays 0. */

@@ -35,16 +35,23 @@ export function standardise(grid: Grid, cells: Cells, { method = 'plain', clip =
   assertCellCount(grid, cells, 'The layer');
   const given = valuesInside(grid, cells);
   const [low = NaN, high = NaN] = quantilesOf(given, clip);
-  for (let at = 0; at < given.length; at++) given[at] = Math.min(high, Math.max(low, given[at]!));
+  drawIn(given, low, high);
   const [centre, scale] = given.length === 0 ? [NaN, 0] : METHODS[method](given);
-  const { inside } = grid;
+  return { cells: onScale(grid, cells, { centre, scale, low, high }), centre, scale, low, high };
+}
+
+function drawIn(values: Float32Array, low: number, high: number): void {
+  for (let at = 0; at < values.length; at++) values[at] = Math.min(high, Math.max(low, values[at]!));
+}
+
+function onScale({ inside }: Grid, cells: Cells, { centre, scale, low, high }: Omit<StandardisedLayer, 'cells'>): Cells {
   const out = new Float32Array(cells.length).fill(NaN);
   for (let cell = 0; cell < cells.length; cell++) {
     const value = cells[cell]!;
     if (inside[cell] !== 1 || Number.isNaN(value)) continue;
     out[cell] = scale > 0 ? (Math.min(high, Math.max(low, value)) - centre) / scale : 0;
   }
-  return { cells: out, centre, scale, low, high };
+  return out;
 }
 
 function meanAndSd(values: Float32Array): readonly [number, number] {

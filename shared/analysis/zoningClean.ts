@@ -25,8 +25,12 @@ export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrow
   if (highestLabel(raw.labels) <= 1) return raw;
   const cleaned = withoutSmall(grid, majorityFiltered(raw.labels, grid.cols, MAJORITY_PASSES), { smallestPatchHa, narrowestM });
   const doubt = raw.doubt.slice();
-  for (let cell = 0; cell < doubt.length; cell++) if (cleaned[cell] !== raw.labels[cell]) doubt[cell] = 1;
+  doubtWhereMoved(doubt, raw.labels, cleaned);
   return { labels: renumberedByMean(cleaned, orderBy), doubt };
+}
+
+function doubtWhereMoved(doubt: Cells, before: Labels, after: Labels): void {
+  for (let cell = 0; cell < doubt.length; cell++) if (after[cell] !== before[cell]) doubt[cell] = 1;
 }
 
 /** Nothing narrower and nothing smaller than asked for; what is cut off a narrow place may be small. */

@@ -94,13 +94,7 @@ export interface CellZones {
 export function zonesOnGrid(grid: Grid, table: FeatureTable, fit: ZoneFit): CellZones {
   const labels = new Uint8Array(grid.inside.length);
   const doubt = new Float32Array(grid.inside.length).fill(NaN);
-  const { cells } = table;
-  const { labels: zoneOf, doubt: doubtOf } = fit;
-  for (let point = 0; point < cells.length; point++) {
-    const cell = cells[point]!;
-    labels[cell] = zoneOf[point]! + 1;
-    doubt[cell] = doubtOf[point]!;
-  }
+  putOnCells(table.cells, fit, { labels, doubt });
   if (table.incomplete.length === 0) return { labels, doubt };
   const means = columnMeans(table, fit);
   for (const cell of table.incomplete) {
@@ -111,14 +105,25 @@ export function zonesOnGrid(grid: Grid, table: FeatureTable, fit: ZoneFit): Cell
   return { labels: isComplete ? labels : withGapsFilled(grid, labels), doubt };
 }
 
+/** A function of its own, as every loop over all cells that runs once for each number of zones: see DEVELOPERS.md, zoning. */
+function putOnCells(cells: Int32Array, fit: ZoneFit, { labels, doubt }: CellZones): void {
+  for (let point = 0; point < cells.length; point++) {
+    const cell = cells[point]!;
+    labels[cell] = fit.labels[point]! + 1;
+    doubt[cell] = fit.doubt[point]!;
+  }
+}
+
 function columnMeans({ cells, columns }: FeatureTable, { labels, k }: ZoneFit): Float64Array[] {
   const sizes = new Float64Array(k);
-  for (const zone of labels) sizes[zone] = sizes[zone]! + 1;
-  return columns.map((column) => {
-    const sums = new Float64Array(k);
-    for (let point = 0; point < cells.length; point++) sums[labels[point]!]! += column[cells[point]!]!;
-    return sums.map((sum, zone) => sum / sizes[zone]!);
-  });
+  for (let point = 0; point < labels.length; point++) sizes[labels[point]!]! += 1;
+  return columns.map((column) => sumsByZone(column, cells, labels, k).map((sum, zone) => sum / sizes[zone]!));
+}
+
+function sumsByZone(column: Float32Array, cells: Int32Array, labels: Uint8Array, k: number): Float64Array {
+  const sums = new Float64Array(k);
+  for (let point = 0; point < cells.length; point++) sums[labels[point]!]! += column[cells[point]!]!;
+  return sums;
 }
 
 /** Zone 1…k by the columns the cell has; 0 when it has none. */

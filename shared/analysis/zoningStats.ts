@@ -69,19 +69,32 @@ function cellAreas({ share, cellSizeM }: Grid, labels: Labels, count: number): F
 function doubtfulShares(labels: Labels, doubt: Cells, count: number): Float64Array {
   const cells = new Float64Array(count + 1);
   const doubtful = new Float64Array(count + 1);
+  countDoubtful(labels, doubt, { cells, doubtful });
+  return doubtful.map((value, zone) => (cells[zone]! > 0 ? value / cells[zone]! : 0));
+}
+
+function countDoubtful(labels: Labels, doubt: Cells, { cells, doubtful }: { cells: Float64Array; doubtful: Float64Array }): void {
   for (let cell = 0; cell < labels.length; cell++) {
     const zone = labels[cell]!;
     cells[zone]! += 1;
     if (doubt[cell]! > DOUBTFUL_ABOVE) doubtful[zone]! += 1;
   }
-  return doubtful.map((value, zone) => (cells[zone]! > 0 ? value / cells[zone]! : 0));
 }
 
-/** Sums around the layer's first value keep the digits of layers far from 0, such as elevation. */
 function momentsByZone(labels: Labels, cells: Cells, count: number): { n: number; mean: number | null; sd: number | null }[] {
   const n = new Float64Array(count + 1);
   const sums = new Float64Array(count + 1);
   const squares = new Float64Array(count + 1);
+  const origin = addMoments(labels, cells, { n, sums, squares });
+  return Array.from(n, (cellCount, zone) => {
+    if (cellCount === 0) return { n: 0, mean: null, sd: null };
+    const mean = sums[zone]! / cellCount;
+    return { n: cellCount, mean: origin + mean, sd: Math.sqrt(Math.max(0, squares[zone]! / cellCount - mean * mean)) };
+  });
+}
+
+/** Adds numbers, sums and squares around the layer's first value, which keeps the digits of layers far from 0, such as elevation. Out: that value. */
+function addMoments(labels: Labels, cells: Cells, { n, sums, squares }: { n: Float64Array; sums: Float64Array; squares: Float64Array }): number {
   let origin = NaN;
   for (let cell = 0; cell < labels.length; cell++) {
     const zone = labels[cell]!;
@@ -94,9 +107,5 @@ function momentsByZone(labels: Labels, cells: Cells, count: number): { n: number
     sums[zone]! += above;
     squares[zone]! += above * above;
   }
-  return Array.from(n, (cellCount, zone) => {
-    if (cellCount === 0) return { n: 0, mean: null, sd: null };
-    const mean = sums[zone]! / cellCount;
-    return { n: cellCount, mean: origin + mean, sd: Math.sqrt(Math.max(0, squares[zone]! / cellCount - mean * mean)) };
-  });
+  return origin;
 }

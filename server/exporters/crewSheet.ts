@@ -27,6 +27,8 @@ const sizeOf = ({ paper }: Pick<SheetOptions, 'paper'>) => (paper === 'a4' ? 'A4
 const edge = 36;
 const lineHeight = 30;
 const stripHeight = 132;
+/** Four lines of the table's head. */
+const mostHeadHeight = 44;
 
 /** The walks of a round as PDF: a page run a person, vines in walking order with large boxes, safety card and QR to the round. */
 export async function crewSheet(parts: readonly SheetPart[], options: SheetOptions): Promise<Buffer> {
@@ -79,7 +81,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.font('Helvetica').fontSize(8).text(texts.scan, pdf.page.width - edge - side, edge + side, { width: side, align: 'center' });
   pdf.font('Helvetica-Bold').fontSize(20).text(`${round.blockName}, ${person}`, edge, edge, { width });
   pdf.fontSize(12).text(day, { width });
-  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}. ${texts.start}: ${round.gate || '-'}`, { width });
+  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}.${round.gate ? ` ${texts.start}: ${round.gate}` : ''}`, { width });
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
   drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
@@ -198,9 +200,11 @@ function fromWords({ enterBy, heading, aheadFrom }: WalkStop, round: FieldRound,
 
 function drawTableHead(pdf: PDFKit.PDFDocument, columns: readonly Column[], { texts, y }: { texts: Texts; y: number }): number {
   pdf.font('Helvetica-Bold').fontSize(9);
-  for (const { x, width, head } of columns) pdf.text(head(texts), x + 2, y, { width: width - 4, height: 22, ellipsis: true });
-  pdf.moveTo(edge, y + 24).lineTo(pdf.page.width - edge, y + 24).lineWidth(1.5).stroke();
-  return y + 26;
+  // Longer words than a box is wide take another line, so that no unit is cut off.
+  const height = Math.min(mostHeadHeight, Math.max(22, ...columns.map(({ width, head }) => Math.ceil(pdf.heightOfString(head(texts), { width: width - 4 })))));
+  for (const { x, width, head } of columns) pdf.text(head(texts), x + 2, y, { width: width - 4, height, ellipsis: true });
+  pdf.moveTo(edge, y + height + 2).lineTo(pdf.page.width - edge, y + height + 2).lineWidth(1.5).stroke();
+  return y + height + 4;
 }
 
 function drawStop(pdf: PDFKit.PDFDocument, columns: readonly Column[], { stop, round, texts, y }: { stop: WalkStop; round: FieldRound; texts: Texts; y: number }): void {

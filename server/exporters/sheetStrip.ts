@@ -35,6 +35,7 @@ export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place
   const most = Math.max(...rows.map(({ vineCount }) => vineCount), 1);
   const heightOf = (vines: number) => (vines / most) * (bottom - top);
   const visited = new Set(stops.map(({ rowId }) => rowId));
+  let labelledTo = Number.NEGATIVE_INFINITY;
   rows.forEach((row, index) => {
     const x = left + (index + 0.5) * pitch;
     for (const { zone, from, to } of row.runs) {
@@ -42,7 +43,12 @@ export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place
       pdf.rect(x - pitch * 0.42, bottom - high, pitch * 0.84, high - low).fill(greyOf(zone));
     }
     pdf.moveTo(x, bottom).lineTo(x, bottom - heightOf(row.vineCount)).lineWidth(visited.has(row.id) ? 0.9 : 0.3).strokeColor(visited.has(row.id) ? 'black' : '#888888').stroke();
-    if (visited.has(row.id) && (pitch >= 8 || index % Math.ceil(10 / pitch) === 0)) pdf.fillColor('black').fontSize(6.5).text(row.label, x - 12, bottom + 3, { width: 24, align: 'center', lineBreak: false });
+    if (!visited.has(row.id)) return;
+    const half = pdf.font('Helvetica').fontSize(6.5).widthOfString(row.label) / 2;
+    // A row whose number would touch the one before it goes without; its marks and the table name it.
+    if (x - half < labelledTo + 1.5) return;
+    labelledTo = x + half;
+    pdf.fillColor('black').text(row.label, x - 12, bottom + 3, { width: 24, align: 'center', lineBreak: false });
   });
   const indexOf = new Map(rows.map((row, index) => [row.id, index]));
   const placed: { x: number; y: number }[] = [];

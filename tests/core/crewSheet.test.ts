@@ -36,6 +36,24 @@ describe('the crew sheet', () => {
     expect(pages[0]!.texts.join(' ')).toContain('weight, g');
   });
 
+  it('cuts no unit off in the language with the longest words', async () => {
+    const asked = measures.filter(({ code }) => ['clusterCount', 'clusterWeight', 'brix'].includes(code));
+    for (const paper of ['a4', 'letter'] as const) {
+      const words = (await pagesOf({ language: 'it', round: round([stop(1, ['clusterWeight', 'brix'])], asked) }, paper)).flatMap(({ texts }) => texts).join(' ');
+      expect(words, paper).toMatch(/Peso del\s+grappolo,\s+g/u);
+      expect(words).not.toContain('…');
+    }
+  });
+
+  it('numbers each walked row under the strip where the numbers do not touch, and names no start that nobody gave', async () => {
+    const rows = Array.from({ length: 60 }, (_, i) => ({ id: `r${i + 1}`, label: String(i + 1), firstOrdinal: 1, vineCount: 100, runs: [{ zone: 1, from: 1, to: 100 }], known: [], ends: null }));
+    const walked = [46, 42, 7].map((row, i) => ({ ...stop(i + 1, ['clusterCount']), rowId: `r${row}`, rowLabel: String(row), vineNumber: 80, ordinal: 80, reserve: null }));
+    const [page] = await pagesOf({ round: { ...round(walked), rows, gate: '' } });
+    // Once under the strip and once in the table.
+    for (const row of ['46', '42', '7']) expect(page!.texts.filter((text) => text === row), row).toHaveLength(2);
+    expect(page!.texts.join(' ')).not.toContain('Start');
+  });
+
   it('turns to the long side where the boxes would grow narrow, and stays upright where they do not', async () => {
     const many = Array.from({ length: 7 }, (_, i) => measure(`own${i}`, 'field'));
     const [wide] = await pagesOf({ round: round([stop(1, ['own6'])], many) });

@@ -57,7 +57,12 @@ export function adviseImpractical(ask: AdviceQuestion): ImpracticalAdvice | null
   if (zonesOver.length === 0 && !hoursOver) return null;
   const judge = (other: PlanCounts): Outcome => ({ visits: other.visits, hours: other.hours, saving: 1 - other.visits / plan.visits, fits: isPractical(other, limits) });
   const options = [widerMargin(question, limits, judge), lowerConfidence(ask, judge), poolZones(ask, zonesOver, judge), ...divided(ask, zonesOver)];
-  return { zonesOver, hoursOver, options: options.filter((option) => option !== null) };
+  return { zonesOver, hoursOver, options: options.filter((option) => option !== null && helps(option, plan)) as ImpracticalOption[] };
+}
+
+/** A division is spoken of either way, since people ask for it; the rest only where it brings the plan inside its limits or saves a hundredth. */
+function helps({ kind, fits, visits, hours }: ImpracticalOption, plan: PlanCounts): boolean {
+  return kind === 'divideZone' || fits || visits <= 0.99 * plan.visits || hours <= 0.99 * plan.hours;
 }
 
 export function isPractical(plan: PlanCounts, limits: PracticalLimits): boolean {
@@ -86,14 +91,14 @@ function lowerConfidence({ question, confidences }: AdviceQuestion, judge: Judge
   return option;
 }
 
-/** The pair with a zone over its limit whose union needs the fewest vines. */
+/** The pair with a zone over its limit whose union needs the fewest vines; of as many vines, the one that takes less time. */
 function poolZones({ question, pooled }: AdviceQuestion, zonesOver: readonly string[], judge: Judge): ImpracticalOption | null {
   let best: ImpracticalOption | null = null;
   question.zones.forEach((first, i) => {
     question.zones.slice(i + 1).forEach((second) => {
       if (!pooled || (zonesOver.length > 0 && !zonesOver.includes(first.zone) && !zonesOver.includes(second.zone))) return;
       const outcome = judge(planCounts(pooled(first.zone, second.zone)));
-      if (best === null || outcome.visits < best.visits) best = { kind: 'poolZones', zones: [first.zone, second.zone], ...outcome };
+      if (best === null || outcome.visits < best.visits || (outcome.visits === best.visits && outcome.hours < best.hours)) best = { kind: 'poolZones', zones: [first.zone, second.zone], ...outcome };
     });
   });
   return best;

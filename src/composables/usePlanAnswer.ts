@@ -9,8 +9,8 @@ import type { TradeOffCurve } from '../../shared/sampling/tradeOff.ts';
 
 export interface LivePlan {
   answer: ComputedRef<PlanAnswer | null>;
-  /** Why there is no answer, in the calculation's own words. */
-  refusal: ComputedRef<string | null>;
+  /** Why there is no answer. */
+  refusal: ComputedRef<AnalysisError | null>;
   curves: (code: string) => TradeOffCurve[];
   forBudget: (budget: Budget) => BudgetAnswer | null;
 }
@@ -29,11 +29,11 @@ export function usePlanAnswer(basis: Ref<PlanBasis | null>, choices: Ref<PlanCho
   };
 }
 
-function attempt<Answer>(work: () => Answer): { answer: Answer | null; refusal: string | null } {
+function attempt<Answer>(work: () => Answer): { answer: Answer | null; refusal: AnalysisError | null } {
   try {
     return { answer: work(), refusal: null };
   } catch (error) {
     if (!(error instanceof AnalysisError)) throw error;
-    return { answer: null, refusal: error.message };
+    return { answer: null, refusal: error };
   }
 }

@@ -224,6 +224,13 @@ describe('impractical wishes', () => {
     expect(wider.hours).toBeLessThanOrEqual(plan.hours / 2);
   });
 
+  it('offers nothing that would not help: where the least number per zone alone takes too long, no option is left', () => {
+    const plan = planCounts({ ...QUESTION, minimum: 40 });
+    const advice = adviseImpractical({ question: { ...QUESTION, minimum: 40 }, plan, confidences, pooled: () => ({ ...QUESTION, minimum: 40 }), limits: { visitsPerZone: 60, hours: plan.hours / 2 } })!;
+    expect(plan.zones.map(({ visits }) => visits)).toEqual([40, 40, 40]);
+    expect(advice).toMatchObject({ hoursOver: true, options: [] });
+  });
+
   it('widens the spread of pooled zones by the difference of their means', () => {
     // By hand: half and half, sd 1 each, means 2 apart → variance 1 + 1
     expect(mergedSpread([{ vines: 10, sd: 1, mean: 20 }, { vines: 10, sd: 1, mean: 22 }])).toBeCloseTo(Math.SQRT2, 12);

@@ -99,6 +99,16 @@ describe('refusals in the language of whoever asked', () => {
     expect(computationWords('pt', 'Something nobody has written down.')).toBe('Something nobody has written down.');
   });
 
+  it('has what a planner can bring about: spreads that leave nothing, measures out of use, walks that cannot be laid', () => {
+    const said = [
+      'There is no measure "clusterCount" in use in this estate. Choose another or add it.',
+      'The spread between clusters of a vine (2.5) leaves nothing between vines (1.05 in all). Enter a smaller one, or say that more clusters were taken then.',
+      'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.',
+    ];
+    for (const sentence of said) for (const language of ['fr', 'es', 'it', 'pt'] as const) expect(computationWords(language, sentence), language).not.toBe(sentence);
+    expect(computationWords('fr', said[1]!)).toContain('(2.5)');
+  });
+
   it('says again why a job failed, which is kept in English', () => {
     const kept = sentenceIn('en', say('outlineChangedSinceAsked', { block: 'Heron Bank' }));
     expect(failureWords('it', kept)).toBe(sentenceIn('it', say('outlineChangedSinceAsked', { block: 'Heron Bank' })));

@@ -63,4 +63,10 @@ export const es: Record<string, string> = {
   'A count of {1} rows or vines cannot be used; type a whole number from 1 to {2}.': 'Un número de {1} hileras o cepas no se puede usar; escriba un número entero de 1 a {2}.',
   'Position {1}, {2} is not a longitude and latitude that UTM covers; give degrees, longitude first.': 'La posición {1}, {2} no es una longitud y latitud que cubra UTM; dé grados, primero la longitud.',
   'EPSG:{1} is not a UTM zone on WGS 84; use 32601–32660 or 32701–32760.': 'EPSG:{1} no es un huso UTM sobre WGS 84; use 32601–32660 o 32701–32760.',
+  'There is no measure "{1}" in use in this estate. Choose another or add it.': 'No hay ninguna medida «{1}» en uso en esta finca. Elija otra o añádala.',
+  'The spread between clusters of a vine ({1}) leaves nothing between vines ({2} in all). Enter a smaller one, or say that more clusters were taken then.': 'La dispersión entre racimos de una cepa ({1}) no deja nada entre cepas ({2} en total). Ponga una menor, o diga que entonces se tomaron más racimos.',
+  'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.': 'A algunas cepas no se llega desde el inicio sin cruzar una hilera; abra una cabecera o indique un paso.',
+  'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Hay más de {1} pasos entre hileras uno al lado del otro; indique menos.',
+  'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'El inicio o el final del recorrido está en una cabecera cerrada junto a la calle {1}; muévalo o abra la cabecera.',
+  'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'No se puede buscar el mejor orden de {1} parcelas; dé usted el orden, o planifique como mucho {2} a la vez.',
 };

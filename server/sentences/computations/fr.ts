@@ -63,4 +63,10 @@ export const fr: Record<string, string> = {
   'A count of {1} rows or vines cannot be used; type a whole number from 1 to {2}.': 'Un compte de {1} rangs ou ceps est inutilisable ; tapez un nombre entier de 1 à {2}.',
   'Position {1}, {2} is not a longitude and latitude that UTM covers; give degrees, longitude first.': 'La position {1}, {2} n’est pas une longitude et une latitude que couvre l’UTM ; donnez des degrés, la longitude d’abord.',
   'EPSG:{1} is not a UTM zone on WGS 84; use 32601–32660 or 32701–32760.': 'EPSG:{1} n’est pas un fuseau UTM sur WGS 84 ; prenez 32601–32660 ou 32701–32760.',
+  'There is no measure "{1}" in use in this estate. Choose another or add it.': 'Il n’y a pas de mesure « {1} » en usage dans ce domaine. Choisissez-en une autre ou ajoutez-la.',
+  'The spread between clusters of a vine ({1}) leaves nothing between vines ({2} in all). Enter a smaller one, or say that more clusters were taken then.': 'L’écart entre grappes d’un cep ({1}) ne laisse rien entre les ceps ({2} en tout). Entrez-en un plus petit, ou dites que davantage de grappes avaient été prises.',
+  'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.': 'Certains ceps ne peuvent être atteints depuis le départ sans traverser un rang ; ouvrez une tournière ou indiquez un passage.',
+  'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Plus de {1} passages dans les rangs se trouvent côte à côte ; indiquez-en moins.',
+  'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'Le départ ou la fin du parcours se trouve sur une tournière fermée à côté de l’interrang {1} ; déplacez-le ou ouvrez la tournière.',
+  'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'Le meilleur ordre de {1} parcelles ne peut être cherché ; donnez l’ordre, ou planifiez-en au plus {2} à la fois.',
 };

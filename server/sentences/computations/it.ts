@@ -63,4 +63,10 @@ export const it: Record<string, string> = {
   'A count of {1} rows or vines cannot be used; type a whole number from 1 to {2}.': 'Un numero di {1} filari o viti non si può usare; scrivere un numero intero da 1 a {2}.',
   'Position {1}, {2} is not a longitude and latitude that UTM covers; give degrees, longitude first.': 'La posizione {1}, {2} non è una longitudine e latitudine coperta da UTM; dare gradi, prima la longitudine.',
   'EPSG:{1} is not a UTM zone on WGS 84; use 32601–32660 or 32701–32760.': 'EPSG:{1} non è una zona UTM su WGS 84; usare 32601–32660 o 32701–32760.',
+  'There is no measure "{1}" in use in this estate. Choose another or add it.': 'Nella tenuta non c’è una misura «{1}» in uso. Ne scelga un’altra o la aggiunga.',
+  'The spread between clusters of a vine ({1}) leaves nothing between vines ({2} in all). Enter a smaller one, or say that more clusters were taken then.': 'La variabilità tra grappoli di un ceppo ({1}) non lascia nulla tra i ceppi ({2} in tutto). Ne indichi una minore, o dica che allora si presero più grappoli.',
+  'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.': 'Alcuni ceppi non si raggiungono dalla partenza senza attraversare un filare; apra una capezzagna o indichi un varco.',
+  'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Più di {1} varchi tra i filari stanno uno accanto all’altro; ne indichi meno.',
+  'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'La partenza o la fine del percorso è su una capezzagna chiusa accanto all’interfila {1}; la sposti o apra la capezzagna.',
+  'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'L’ordine migliore di {1} appezzamenti non si può cercare; dia l’ordine, o ne pianifichi al massimo {2} per volta.',
 };

@@ -63,4 +63,10 @@ export const pt: Record<string, string> = {
   'A count of {1} rows or vines cannot be used; type a whole number from 1 to {2}.': 'Um número de {1} bardos ou videiras não pode ser usado; escreva um número inteiro de 1 a {2}.',
   'Position {1}, {2} is not a longitude and latitude that UTM covers; give degrees, longitude first.': 'A posição {1}, {2} não é uma longitude e latitude que UTM cubra; dê graus, primeiro a longitude.',
   'EPSG:{1} is not a UTM zone on WGS 84; use 32601–32660 or 32701–32760.': 'EPSG:{1} não é um fuso UTM em WGS 84; use 32601–32660 ou 32701–32760.',
+  'There is no measure "{1}" in use in this estate. Choose another or add it.': 'Não há nenhuma medida “{1}” em uso nesta quinta. Escolha outra ou acrescente-a.',
+  'The spread between clusters of a vine ({1}) leaves nothing between vines ({2} in all). Enter a smaller one, or say that more clusters were taken then.': 'A dispersão entre cachos de uma cepa ({1}) não deixa nada entre cepas ({2} ao todo). Indique uma menor, ou diga que então se colheram mais cachos.',
+  'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.': 'Não se chega a algumas cepas desde o início sem atravessar uma linha; abra uma cabeceira ou indique uma passagem.',
+  'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Há mais de {1} passagens entre linhas lado a lado; indique menos.',
+  'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'O início ou o fim do percurso está numa cabeceira fechada junto da entrelinha {1}; mude-o ou abra a cabeceira.',
+  'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'Não se pode procurar a melhor ordem de {1} parcelas; dê a ordem, ou planeie no máximo {2} de cada vez.',
 };

@@ -1,3 +1,4 @@
+import { newId } from '../lib/newId.ts';
 import { fieldDatabase, orNothing } from './fieldDatabase.ts';
 import { keptRound } from './keptRounds.ts';
 
@@ -18,10 +19,10 @@ export function isReady({ hasRound, canWrite, hasProgram, hasSpace }: Readiness)
   return hasRound && canWrite && hasProgram && hasSpace;
 }
 
-/** Reads the stored round back, writes a day's worth and reads it, and looks for the kept program: a test, not a wish. */
-export async function checkReadiness(owner: { estateId: string; personId: string }, roundId: string, now: Date): Promise<Readiness> {
-  const kept = await orNothing(keptRound(owner, roundId), null);
-  const hasRound = kept !== null && kept.round.stops.every(({ rowId }) => kept.round.rows.some(({ id }) => id === rowId)) && kept.round.measures.length > 0;
+/** Reads every round of the day back, writes a day's worth and reads it, and looks for the kept program: a test, not a wish. */
+export async function checkReadiness(owner: { estateId: string; personId: string }, roundIds: readonly string[], now: Date): Promise<Readiness> {
+  const kept = await Promise.all(roundIds.map((id) => orNothing(keptRound(owner, id), null)));
+  const hasRound = kept.every((one) => one !== null && one.round.stops.every(({ rowId }) => one.round.rows.some(({ id }) => id === rowId)) && one.round.measures.length > 0);
   return { hasRound, canWrite: await writesAndReads(), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
 }
 
@@ -30,17 +31,27 @@ const trialBytes = 256 * 1024;
 /** The most a browser gives at once. */
 const randomBytes = 65_536;
 
+/** Of this page alone: another that tests at the same time must not read what this one wrote. */
+const trialKey = `selfTest ${newId()}`;
+let testing: Promise<boolean> | null = null;
+
+/** One test at a time: two would overwrite each other, and a sound phone would seem broken. */
+function writesAndReads(): Promise<boolean> {
+  testing ??= writeAndRead().finally(() => (testing = null));
+  return testing;
+}
+
 /** False as well where the phone is full or its store was taken away: that is what is asked here. */
-async function writesAndReads(): Promise<boolean> {
+async function writeAndRead(): Promise<boolean> {
   try {
     const database = await fieldDatabase();
     // By chance, so that no store can press it into less room.
     const value = new Uint8Array(trialBytes);
     for (let at = 0; at < trialBytes; at += randomBytes) crypto.getRandomValues(value.subarray(at, at + randomBytes));
     const transaction = database.transaction('facts', 'readwrite', { durability: 'strict' });
-    await Promise.all([transaction.store.put({ key: 'selfTest', value }), transaction.done]);
-    const stored = (await database.get('facts', 'selfTest'))?.value;
-    await database.delete('facts', 'selfTest');
+    await Promise.all([transaction.store.put({ key: trialKey, value }), transaction.done]);
+    const stored = (await database.get('facts', trialKey))?.value;
+    await database.delete('facts', trialKey);
     return stored instanceof Uint8Array && stored.length === trialBytes && stored.every((byte, at) => byte === value[at]);
   } catch {
     return false;

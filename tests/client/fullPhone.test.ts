@@ -105,10 +105,15 @@ describe.each([
 });
 
 describe('the self-test', () => {
-  const canWrite = async (): Promise<boolean> => (await checkReadiness({ estateId: 'e', personId: 'p' }, 'w', new Date('2026-09-01T07:00:00Z'))).canWrite;
+  const canWrite = async (): Promise<boolean> => (await checkReadiness({ estateId: 'e', personId: 'p' }, ['w', 'v'], new Date('2026-09-01T07:00:00Z'))).canWrite;
 
   it('writes as much as a day’s readings, and leaves nothing of it', async () => {
     expect(await canWrite()).toBe(true);
+    expect(phone.held.size).toBe(0);
+  });
+
+  it('of two screens at once spoils neither', async () => {
+    expect(await Promise.all([canWrite(), canWrite()])).toEqual([true, true]);
     expect(phone.held.size).toBe(0);
   });
 

@@ -3,7 +3,7 @@ import type { LonLat, RingLonLat } from '../../shared/geo/coordinates.ts';
 
 /** Something only a person can answer. Nothing is read from the file until it is answered. */
 export interface ImportQuestion {
-  code: 'reference-system' | 'no-data' | 'layer' | 'columns' | 'axes' | 'decimal-mark' | 'placement';
+  code: 'reference-system' | 'no-data' | 'layer' | 'columns' | 'axes' | 'decimal-mark' | 'placement' | 'mask-band';
   text: string;
   /** Why it is asked, for the screens, which have words of their own for it. */
   why?: QuestionReason;
@@ -12,7 +12,7 @@ export interface ImportQuestion {
 
 /** Why something must be asked: a code with its values, and the whole English sentence. */
 export interface QuestionReason {
-  code: 'not-named' | 'no-prj' | 'unusable' | 'table-projection' | 'not-degrees' | 'degrees' | 'impossible' | 'far' | 'value-returns';
+  code: 'not-named' | 'no-prj' | 'unusable' | 'table-projection' | 'not-degrees' | 'degrees' | 'impossible' | 'far' | 'value-returns' | 'mask-like';
   text: string;
   params?: Readonly<Record<string, string | number>>;
 }
@@ -174,6 +174,8 @@ export interface ImportAnswers {
   placement?: 'keep';
   /** null: every value counts. */
   noData?: number | null;
+  /** The last band says where values are missing, although the file does not. */
+  maskBand?: boolean;
   layer?: string;
   xColumn?: string;
   yColumn?: string;

@@ -13,6 +13,7 @@ export function readOptionsOf({ fileName, estateLonLat, answers, companions }: S
     ...(answers.projectionText === undefined ? {} : { projectionText: answers.projectionText }),
     ...placementOf(answers.placement),
     ...(answers.noData === undefined ? {} : { noData: answers.noData }),
+    ...(answers.maskBand === undefined ? {} : { maskBand: answers.maskBand }),
     ...(answers.sourceLayer === undefined ? {} : { layer: answers.sourceLayer }),
     ...(answers.xColumn === undefined ? {} : { xColumn: answers.xColumn }),
     ...(answers.yColumn === undefined ? {} : { yColumn: answers.yColumn }),
@@ -57,6 +58,7 @@ const answerOf: Record<ReaderQuestion['code'], readonly (keyof ImportAnswers)[]>
   columns: ['xColumn', 'yColumn'],
   axes: ['swapAxes'],
   'decimal-mark': ['decimalMark'],
+  'mask-band': ['maskBand'],
 };
 
 /** Only these can be wrong in a way that the reader finds out: asked again, they are open again. */
@@ -86,6 +88,7 @@ export function noteOf({ code, text, params }: ImportWarning): ImportNote {
 function typedValue(code: string, value: string): string | number | boolean | null {
   if (code === 'reference') return Number(value);
   if (code === 'noData') return value === 'none' ? null : Number(value);
+  if (code === 'maskBand') return value === 'mask';
   if (code === 'swapAxes') return value === 'true' || value === 'swap';
   return value;
 }

@@ -26,6 +26,8 @@ export const importAnswers = z.object({
   placement: z.string().regex(/^(keep|\d{4,6})$/).optional(),
   /** Number that marks missing values; null when every value counts. */
   noData: z.number().nullable().optional(),
+  /** The last band says where nothing was measured. */
+  maskBand: z.boolean().optional(),
   /** Which of several layers in the file. */
   sourceLayer: z.string().max(300).optional(),
   xColumn: z.string().max(300).optional(),

@@ -7,7 +7,9 @@ import { peakMemoryMb } from './peakMemory.ts';
 import { readRasterOntoGrids } from '../../server/importers/raster/readRasterOntoGrids.ts';
 
 const [path, cell] = process.argv.slice(2);
-const options = pictureOptions(path!);
+const asFound = pictureOptions(path!);
+// Where on Earth a picture without a reference system lies changes nothing of its reading: any zone will do.
+const options = (await describeRaster(path!, asFound)).reference === null ? { ...asFound, answers: { epsg: 32631 } } : asFound;
 const baseMb = peakMemoryMb();
 const start = performance.now();
 const understood = await describeRaster(path!, options);

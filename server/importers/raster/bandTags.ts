@@ -18,14 +18,19 @@ export interface BandReading {
 /** PhotometricInterpretation of TIFF 6.0 and its technical notes for colours mixed for the eye or the press. */
 const pictureColours: Readonly<Record<number, string>> = { 5: 'CMYK', 6: 'YCbCr', 8: 'CIELAB', 9: 'ICCLAB', 10: 'ITULAB' };
 
-/** Scale, offset, name and no-data value of each band. The alpha band (ExtraSamples 1 or 2) is not a band of values. */
-export function readBands(layout: RasterLayout, tags: GeoTags): BandReading {
+/**
+ * Scale, offset, name and no-data value of each band. A mask is not a band of values: ExtraSamples 1 or 2, an item of the
+ * metadata that calls it alpha, or the last band where a person said so.
+ */
+export function readBands(layout: RasterLayout, tags: GeoTags, lastIsMask = false): BandReading {
   const items = metadataItems(tags.metadataXml ?? '');
   const noData = parseNoData(tags.noDataText);
   const colours = { 0: ['grey'], 1: ['grey'], 2: ['red', 'green', 'blue'], 3: ['palette'] }[tags.photometric ?? -1] ?? [];
   const firstExtra = layout.samples - tags.extraSamples.length;
   const alphaAt = tags.extraSamples.findIndex((kind) => kind === 1 || kind === 2);
-  const alphaBand = alphaAt < 0 || layout.samples === 1 ? null : firstExtra + alphaAt + 1;
+  const named = items.find(({ role, text }) => role === 'colorinterp' && /^alpha$/i.test(text))?.sample ?? -1;
+  const alpha = alphaAt >= 0 ? firstExtra + alphaAt : lastIsMask ? layout.samples - 1 : named;
+  const alphaBand = alpha < 0 || alpha >= layout.samples || layout.samples === 1 ? null : alpha + 1;
   const type = `${layout.format === 'uint' ? 'unsigned' : layout.format === 'int' ? 'signed' : 'float'} ${layout.bits}-bit`;
   const bands = Array.from({ length: layout.samples }, (_, i): BandUnderstood => {
     const of = (role: string): string | null => items.find((item) => item.role === role && item.sample === i)?.text ?? null;

@@ -30,7 +30,7 @@ export function describeOpen(raster: OpenRaster, options: RasterReadOptions): Ra
   const { layout, tags } = raster;
   const questions: ImportQuestion[] = [];
   const warnings: ImportWarning[] = [];
-  const { bands, alphaBand, ...bandNotes } = readBands(layout, tags);
+  const { bands, alphaBand, ...bandNotes } = readBands(layout, tags, options.answers?.maskBand === true);
   const { transform, isPoint } = placeOf(raster, options, warnings);
   const outline = outlineOf(transform, layout);
   const reference = referenceOf(raster, { options, outline, questions, warnings });
@@ -38,7 +38,7 @@ export function describeOpen(raster: OpenRaster, options: RasterReadOptions): Ra
   questions.push(...(placement?.questions ?? []));
   warnings.push(...(placement?.warnings ?? []));
   const bounds = placement?.outlineLonLat ?? null;
-  warnings.push(...bandWarnings({ raster, ...bandNotes }));
+  warnings.push(...bandWarnings({ raster, ...bandNotes, hasNoData: tags.noDataText !== null && bandNotes.badNoData === null }));
   const known = bounds === null ? null : reference;
   return {
     kind: 'raster',

@@ -1,8 +1,9 @@
 import { ImportProblem, naming } from '../importProblem.ts';
 import type { ImportQuestion, ImportWarning, RasterUnderstood } from '../understood.ts';
 import { describeOpen, type RasterReadOptions } from './describeRaster.ts';
+import { findMaskBand } from './maskBand.ts';
 import { previewOpen, type RasterPreview } from './previewRaster.ts';
-import { checkValues } from './valueChecks.ts';
+import { checkValues, isScrambled } from './valueChecks.ts';
 import { withRaster } from './withRaster.ts';
 
 export interface RasterInspection {
@@ -29,7 +30,11 @@ export function inspectRaster(input: string | Uint8Array, options: RasterReadOpt
           params: { why: 'all-missing' },
         });
       }
-      for (const band of preview.bands) {
+      requireSound(preview);
+      const mask = findMaskBand(preview, described.bands, options.answers?.maskBand !== undefined);
+      if (mask?.question) questions.push(mask.question);
+      if (mask?.warning) warnings.push(mask.warning);
+      for (const band of preview.bands.filter(({ index }) => index !== mask?.index)) {
         const found = checkValues(band, described.bands.find(({ index }) => index === band.index)!, { noDataAnswered: options.answers?.noData !== undefined, bands: preview.bands.length });
         questions.push(...found.questions);
         warnings.push(...found.warnings);
@@ -37,6 +42,12 @@ export function inspectRaster(input: string | Uint8Array, options: RasterReadOpt
       return { understood: { ...described, questions: onePerCode(questions), warnings }, preview };
     }),
   );
+}
+
+/** Numbers of no measure at all, such as floats whose bytes stand in another order than the file says. */
+function requireSound({ bands }: RasterPreview): void {
+  if (!bands.every(({ raw }) => isScrambled(raw))) return;
+  throw new ImportProblem({ code: 'damaged', fact: 'Its values jump from under 1e-12 to over 1e12, which nothing measured does: their bytes stand in another order than the file says.', remedy: 'Export it again, without a predictor or in little-endian order.', params: { why: 'scrambled' } });
 }
 
 /** Bands of one file share their mark for missing values: one question serves all. */

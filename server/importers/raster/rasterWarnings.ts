@@ -7,10 +7,12 @@ interface Notes {
   badNoData: string | null;
   isPalette: boolean;
   pictureColours: string | null;
+  /** The file marks missing values by a number. */
+  hasNoData: boolean;
 }
 
 /** What was noticed in the tags and does not stop the file from being used. */
-export function bandWarnings({ raster, badNoData, isPalette, pictureColours }: Notes): ImportWarning[] {
+export function bandWarnings({ raster, badNoData, isPalette, pictureColours, hasNoData }: Notes): ImportWarning[] {
   const { layout, structure, otherPages } = raster;
   const warnings: ImportWarning[] = [];
   if (badNoData !== null) {
@@ -21,6 +23,11 @@ export function bandWarnings({ raster, badNoData, isPalette, pictureColours }: N
   if (pictureColours !== null) warnings.push({ code: 'picture-colours', text: `Its bands are colours of a picture (${pictureColours}), not reflectance; an index made of them means nothing.`, params: { colours: pictureColours } });
   if (layout.bits < 8) warnings.push({ code: 'few-bits', text: `Its values have ${layout.bits} ${layout.bits === 1 ? 'bit' : 'bits'}: at most ${2 ** layout.bits} different values.`, params: { bits: layout.bits } });
   if (countsDownwards(heightSystemOf(raster.tags.geoKeys))) warnings.push({ code: 'depths', text: 'Its heights count downwards: a larger number means lower ground. Turn their sign round before they are used as elevation.' });
+  const left = layout.byteCounts.reduce((count, bytes) => count + (bytes === 0 ? 1 : 0), 0);
+  if (left > 0 && left < layout.byteCounts.length && !hasNoData) {
+    const percent = Number(((left / layout.byteCounts.length) * 100).toPrecision(2));
+    warnings.push({ code: 'sparse', text: `${percent} % of its tiles or strips are not in the file, and it has no mark for missing values; their ground counts as not measured.`, params: { percent } });
+  }
   if (structure.brokenChain) warnings.push({ code: 'broken-chain', text: 'Its list of pictures is damaged after the first one; only the first is used.' });
   if (otherPages > 0) warnings.push({ code: 'more-pages', text: `It holds ${otherPages + 1} pictures; only the first is used.`, params: { pages: otherPages + 1 } });
   return warnings;

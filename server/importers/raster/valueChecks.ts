@@ -32,6 +32,17 @@ export function checkValues({ index, raw, values }: { index: number; raw: Float6
   return { questions, warnings };
 }
 
+/** A tenth and more of the values beyond anything measured, and as many too small to be anything (judgement). */
+export function isScrambled(raw: Float64Array): boolean {
+  let [huge, tiny, present] = [0, 0, 0];
+  for (const value of raw) {
+    if (!Number.isNaN(value)) present += 1;
+    if (Math.abs(value) > 1e12) huge += 1;
+    else if (value !== 0 && Math.abs(value) < 1e-12) tiny += 1;
+  }
+  return huge > present / 10 && tiny > present / 10;
+}
+
 /** Suspected "missing" value and its share, when the band has none declared. */
 function suspectVoid(raw: Float64Array, band: BandUnderstood): { value: number; share: number } | null {
   if (band.noData !== null) return null;

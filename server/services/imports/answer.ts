@@ -17,7 +17,7 @@ import { questionsOf, viewImport } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
 /** Answers that change how the file itself is read. The others only say what to do with it. */
-const readerAnswers = ['reference', 'projectionText', 'placement', 'noData', 'sourceLayer', 'xColumn', 'yColumn', 'swapAxes', 'decimalMark'] as const satisfies (keyof ImportAnswers)[];
+const readerAnswers = ['reference', 'projectionText', 'placement', 'noData', 'maskBand', 'sourceLayer', 'xColumn', 'yColumn', 'swapAxes', 'decimalMark'] as const satisfies (keyof ImportAnswers)[];
 
 /**
  * Takes answers about a file. When nothing is left to ask, outlines are offered as blocks or the layer is placed in the

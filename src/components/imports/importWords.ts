@@ -74,7 +74,7 @@ const shownParams = (params: ImportNote['params'], format: Format) => Object.fro
 /** The words of an answer: the file's own, or ours for the value. */
 export function choiceWords(question: Pick<ImportQuestion, 'code'>, choice: QuestionChoice, { t, te, format }: Words): string {
   if (bandQuestions.has(question.code)) return bandWords(choice, { t, format });
-  if (choice.label !== null && !['noData', 'swapAxes', 'placement'].includes(question.code)) return choice.label;
+  if (choice.label !== null && !['noData', 'maskBand', 'swapAxes', 'placement'].includes(question.code)) return choice.label;
   const value = String(choice.value);
   const key = `imports.choice.${question.code}.${value}`;
   if (te(key)) return t(key, {});

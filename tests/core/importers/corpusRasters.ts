@@ -29,6 +29,13 @@ function patched(tag: number, change: (entry: DataView) => void, plan: Partial<T
   return bytes;
 }
 
+/** The number that the bytes of a float give when they are read the wrong way round. */
+function scrambled(value: number): number {
+  const view = new DataView(new ArrayBuffer(4));
+  view.setFloat32(0, value);
+  return view.getFloat32(0, true);
+}
+
 const whole: CorpusCase[] = [
   raster('a plain GeoTIFF', () => tiff(), accepted()),
   raster('BigTIFF', () => tiff({ bigTiff: true, tile: 16 }), accepted()),
@@ -73,6 +80,12 @@ const doubtful: CorpusCase[] = [
   raster('untagged zeros beside reflectance', () => tiff({ value: (col, row) => (col < 10 ? 0 : 1500 + 10 * row) }), question('no-data', ['0'])),
   raster('untagged lowest float', () => tiff({ type: 'f32', value: (col, row) => (col < 10 ? -3.4028234663852886e38 : row) }), accepted()),
   raster('a no-data tag that is no number', () => tiff({ noData: 'none' }), accepted('no-data-text')),
+  raster('a last band of 0 and 65535 that is not declared as a mask', () => tiff({ type: 'u16', bands: 3, value: (col, row, band) => (band === 2 ? (col < 10 ? 0 : 65535) : 100 + col + row) }), question('mask-band', ['mask', 'values'])),
+  raster('the same, and the answer that it is a mask', () => tiff({ type: 'u16', bands: 3, value: (col, row, band) => (band === 2 ? (col < 10 ? 0 : 65535) : 100 + col + row) }), accepted(), { options: { answers: { maskBand: true } } }),
+  raster('a last band of 65535 everywhere', () => tiff({ type: 'u16', bands: 3, value: (col, row, band) => (band === 2 ? 65535 : 100 + col + row) }), accepted('mask-full')),
+  raster('a last band that the metadata call alpha', () => tiff({ type: 'u16', bands: 2, value: (col, row, band) => (band === 1 ? (col < 10 ? 0 : 65535) : 100 + col + row), tags: { 42112: '<GDALMetadata><Item name="COLORINTERP" sample="1" role="colorinterp">Alpha</Item></GDALMetadata>' } }), accepted()),
+  raster('tiles left out without a mark for missing values', () => tiff({ tile: 16, block: (honest, index) => (index > 6 ? new Uint8Array(0) : honest) }), accepted('sparse')),
+  raster('floats whose bytes stand in the wrong order', () => tiff({ type: 'f32', value: (col, row) => scrambled(0.4 + Math.abs(Math.sin(col * 12.9 + row * 78.2)) / 2) }), refused('damaged', /another order/)),
   raster('a constant picture', () => tiff({ value: () => 7 }), accepted('constant')),
   raster('saturated bytes', () => tiff({ type: 'u8', value: (col) => Math.min(255, 100 + 4 * col) }), accepted('saturated')),
   raster('untagged 255 far above the other bytes', () => tiff({ type: 'u8', value: (col) => (col < 20 ? 255 : 100 + col) }), question('no-data', ['255'])),

@@ -3,6 +3,7 @@ import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
+import { describeRaster } from '../../../server/importers/raster/describeRaster.ts';
 import { decodeLzw } from '../../../server/importers/raster/lzw.ts';
 import { undoDifferences } from '../../../server/importers/raster/predictors.ts';
 import { seededRandom } from '../../../shared/analysis/random.ts';
@@ -88,6 +89,15 @@ describe('every number type, layout and byte order that can be written by hand',
   it('reads one uncompressed strip of any height in slices', async () => {
     const [band] = await readPixels(writeTiff({ width: 1500, height: 900, value: (col, row) => (col * 7 + row * 13) % 60000 }), [1]);
     expect(band!.every((value, i) => value === ((i % 1500) * 7 + Math.floor(i / 1500) * 13) % 60000)).toBe(true);
+  });
+
+  it('takes the last band as a mask when a person says that it is one', async () => {
+    const bytes = writeTiff({ width: 40, height: 20, bands: 3, type: 'u16', value: (col, _row, band) => (band === 2 ? (col < 10 ? 0 : 65535) : 100 * (band + 1) + col) });
+    const { alphaBand, bands } = await describeRaster(bytes, { fileName: 'flight.tif', answers: { maskBand: true } });
+    expect([alphaBand, ...bands.map(({ index }) => index)]).toEqual([3, 1, 2]);
+    const [first] = await readPixels(bytes, [1, 2], alphaBand);
+    expect([first![9], first![10]]).toEqual([NaN, 110]);
+    expect((await describeRaster(bytes, { fileName: 'flight.tif', answers: { maskBand: false } })).alphaBand).toBeNull();
   });
 
   it('leaves out the tiles that a sparse file leaves out', async () => {

@@ -24,11 +24,11 @@ export function bagRoutes(): Router {
     await reportMissing(accessOf(request), bagsMissing.parse(request.body).bagIds, new Date());
     response.status(204).end();
   });
-  router.post('/bags/swap', allow('results.check'), async (request, response) => {
+  router.post('/bags/swap', allow('labels.settle'), async (request, response) => {
     await swapBags(accessOf(request), bagSwap.parse(request.body), new Date());
     response.status(204).end();
   });
-  router.post('/bags/:bagId/settle', allow('results.check'), async (request, response) => {
+  router.post('/bags/:bagId/settle', allow('labels.settle'), async (request, response) => {
     await settleClash(accessOf(request), idParam(request, 'bagId'), clashChoice.parse(request.body));
     response.status(204).end();
   });

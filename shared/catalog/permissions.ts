@@ -40,6 +40,7 @@ export const permissions = {
   'sheets.print': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', crew: 'own', lab: 'do' },
   'lab.enter': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'propose', lab: 'do' },
   'results.check': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'do', lab: 'do' },
+  'labels.settle': { ...planners, winemaker: 'do', lab: 'do' },
   'results.see': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', lab: 'read', guest: 'read' },
   'outliers.exclude': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'do', lab: 'propose' },
   'restrictions.set': planners,

@@ -94,6 +94,10 @@ export const bagLine = z.object({
 });
 export type BagLine = z.infer<typeof bagLine>;
 
+/** A label that two bags carry, until somebody settles it. */
+export const bagClash = z.object({ first: bagLine, later: bagLine, maySettle: z.boolean() });
+export type BagClash = z.infer<typeof bagClash>;
+
 export const bagList = z.object({ items: z.array(bagLine), total: z.number().int() });
 export const bagQuery = z.object({ round: id.optional(), days: z.coerce.number().int().min(1).max(400).optional() });
 
@@ -106,8 +110,9 @@ const reason = z.string().trim().min(3, 'Say why, in a few words.').max(300);
 /** The labels of two bags were exchanged, or a bag got another label: they change places in one step. */
 export const bagSwap = z.object({ codes: z.tuple([labelCode, labelCode]), reason }).refine(({ codes }) => codes[0] !== codes[1], { message: 'Name two different labels.', path: ['codes'] });
 export const clashChoice = z.object({
-  /** `same`: one bag, closed twice. `keepFirst`: the later closing is void. `relabel`: two bags; the later one carries the new label. */
-  choice: z.enum(['same', 'keepFirst', 'relabel']),
+  /** `same`: one bag, closed twice. `keepFirst`, `keepLater`: only that one is real, the other closing is void. `relabel`: two bags; the later one carries the new label. */
+  choice: z.enum(['same', 'keepFirst', 'keepLater', 'relabel']),
   newCode: labelCode.nullable().default(null),
   reason,
 });
+export type ClashChoice = z.infer<typeof clashChoice>;

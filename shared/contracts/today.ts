@@ -9,6 +9,7 @@ export const todayLine = z.discriminatedUnion('kind', [
   z.object({ kind: z.literal('notice'), id, number: z.int(), lotName: z.string(), pickOn: isoDate.nullable() }),
   z.object({ kind: z.literal('round'), id, planId: id, ...block, onDate: isoDate, done: z.int(), vines: z.int(), state: z.enum(['late', 'today', 'open', 'ahead']), isMine: z.boolean(), seen: z.boolean() }),
   z.object({ kind: z.literal('conflict'), total: z.int() }),
+  z.object({ kind: z.literal('labelTwice'), total: z.int() }),
   z.object({ kind: z.literal('question'), id, fileName: z.string() }),
   z.object({ kind: z.literal('proposal'), id, ...block, number: z.int(), advisedZones: z.int().nullable() }),
   z.object({ kind: z.literal('draft'), id, ...block, number: z.int(), zones: z.int().nullable() }),

@@ -5,6 +5,7 @@ import { Bag } from '../../server/models/Bag.ts';
 import { BlockRow } from '../../server/models/BlockRow.ts';
 import { MailMessage } from '../../server/models/MailMessage.ts';
 import { Reading } from '../../server/models/Reading.ts';
+import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import { labelCode, spellLabelCode } from '../../shared/field/labelCode.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
@@ -181,5 +182,34 @@ describe('figures of bags', () => {
     for (const [id, value] of [[one.id, 22], [one.id, 23], [two.id, 20.5]] as const) await brix(id, value);
     const { body } = await agronomist.get(`${base()}/zonings/${block.zoningId}/results?season=${block.seasonId}`);
     expect(body.values).toMatchObject([{ zone: 1, measure: 'brix', n: 2, mean: 21.5, provisional: 3, visit: '2026-09-01' }]);
+  });
+});
+
+describe('a label on two bags, for whoever judges conflicts', () => {
+  const conflicts = async (agent: Agent) => (await agent.get(`${base()}/conflicts`)).body as ConflictList;
+
+  it('is a card with both closings, which the manager settles and crew of neither bag do not see', async () => {
+    const [first, later] = [bag(), bag({ vines: vinesOf(30, 2) })];
+    await close(agronomist, first);
+    await close(manager, later);
+    const { bags, open } = await conflicts(manager);
+    expect(open).toBe(1);
+    expect(bags).toMatchObject([{ maySettle: true, first: { id: first.id, holder: 'Ada Birch', rowLabel: block.rows[2]!.label }, later: { id: later.id, holder: 'Mara Holt' } }]);
+    expect((await conflicts(crew)).bags).toEqual([]);
+    expect((await manager.get(`${base()}/today`)).body.lines).toContainEqual({ kind: 'labelTwice', total: 1 });
+    expect((await manager.post(`${base()}/bags/${later.id}/settle`, { choice: 'keepFirst', reason: 'Typed by mistake' })).status).toBe(204);
+    expect(await conflicts(manager)).toMatchObject({ bags: [], open: 0 });
+  });
+
+  it('may stay with the later bag, which takes receipt and figures of the label; a third bag clashes with it then', async () => {
+    const [first, later, third] = [bag(), bag({ vines: vinesOf(30, 2) }), bag({ vines: vinesOf(44, 2) })];
+    await close(agronomist, first, later, third);
+    await lab.post(`${base()}/bags/received`, { codes: [first.code] });
+    await brix(first.id, 21);
+    expect((await lab.post(`${base()}/bags/${later.id}/settle`, { choice: 'keepLater', reason: 'The first was thrown away' })).status).toBe(204);
+    expect(await Bag.query().findById(first.id)).toMatchObject({ state: 'void' });
+    expect(await Bag.query().findById(later.id)).toMatchObject({ state: 'received', clashesWith: null });
+    expect(await Reading.query().first()).toMatchObject({ bagId: later.id, value: 21, excludedReason: null });
+    expect((await conflicts(lab)).bags).toMatchObject([{ first: { id: later.id }, later: { id: third.id } }]);
   });
 });

@@ -27,7 +27,12 @@ export async function listBags(access: Access, filter: BagFilter): Promise<BagLi
   const query = Bag.query().where({ estateId }).whereNot({ state: 'printed' }).whereRaw('coalesce(closed_at, received_at, created_at) >= ?', [since]).orderByRaw('coalesce(closed_at, received_at, created_at) desc').orderBy('code').limit(most);
   if (filter.round) query.where({ roundId: filter.round });
   if (reachOf(access.roles, 'readings.record') === 'own' && !may(access.roles, 'lab.enter', 'propose')) query.whereIn('roundId', RoundPerson.query().where({ estateId, personId: access.personId }).select('roundId'));
-  const bags = await query;
+  return describeBags(access, await query);
+}
+
+/** Bags as lines of the list, in the order given, with names as far as the role reaches. */
+export async function describeBags(access: Access, bags: readonly Bag[]): Promise<BagLine[]> {
+  const { estateId } = access;
   const [people, counts, places] = await Promise.all([
     Person.query().findByIds([...new Set(bags.flatMap(({ closedBy, receivedBy }) => [closedBy, receivedBy]).filter((id) => id !== null))]).select('id', 'name'),
     Reading.query().where({ estateId, source: 'lab' }).whereIn('bagId', bags.map(({ id }) => id)).groupBy('bagId').select('bagId').count('id as count') as unknown as Promise<{ bagId: string; count: number }[]>,

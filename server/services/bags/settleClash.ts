@@ -11,7 +11,8 @@ import { say } from '../../sentences/say.ts';
 
 /**
  * Settles a label that is on two bags. `same`: one bag was closed by two people; the first closing takes in the vines and
- * readings of the later. `keepFirst`: the later one is void and its own readings are left out with the reason.
+ * readings of the later. `keepFirst`, `keepLater`: the other one is void and its own readings are left out with the reason;
+ * the later takes the label with receipt and figures of the lab over.
  * `relabel`: both are real and the later one carries another label. Nothing is deleted.
  */
 export async function settleClash(access: Access, bagId: string, input: z.infer<typeof clashChoice>): Promise<void> {
@@ -30,6 +31,11 @@ export async function settleClash(access: Access, bagId: string, input: z.infer<
     } else if (input.choice === 'keepFirst') {
       await Reading.query(trx).where({ estateId, bagId: later.id }).patch({ excludedReason: input.reason, excludedBy: personId });
       await closing.patch({ state: 'void' });
+    } else if (input.choice === 'keepLater') {
+      await Reading.query(trx).where({ estateId, bagId: first.id }).whereNot({ source: 'lab' }).patch({ excludedReason: input.reason, excludedBy: personId });
+      await takeLabelOver(trx, access, { bag: later, from: first, seasonId: (await seasonFinder(trx, estateId))(later) });
+      // A third bag with the label clashes with the one that holds it now.
+      await Bag.query(trx).where({ estateId, clashesWith: first.id }).patch({ clashesWith: later.id });
     } else {
       if (input.newCode === null) throw new Missing(say('nameNewLabel'));
       const [holder] = await holdersOf(trx, estateId, [input.newCode]);

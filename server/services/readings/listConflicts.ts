@@ -6,6 +6,7 @@ import { Person } from '../../models/Person.ts';
 import type { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { Round } from '../../models/Round.ts';
+import { bagClashes } from '../bags/bagClashes.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 import { inOrderOfTaking, newestReadings } from './newestReadings.ts';
 import { nameFor } from './readerName.ts';
@@ -14,7 +15,7 @@ const most = 200;
 /** A card of a whole round shows its first readings; the answer holds for all. */
 const shownReadings = 40;
 
-/** Conflicts as cards, open ones first. Who may not settle for others sees the cards that hold a reading of their own. */
+/** Conflicts as cards, open ones first, and labels that are on two bags. Who may not settle for others sees the cards that hold a reading of their own. */
 export async function listConflicts(access: Access): Promise<ConflictList> {
   const { estateId } = access;
   const query = ReadingConflict.query().where({ estateId }).orderByRaw("state = 'settled'").orderBy('createdAt', 'desc').limit(most);
@@ -29,14 +30,15 @@ export async function listConflicts(access: Access): Promise<ConflictList> {
   const grounds = new Map<string, BlockVines>();
   for (const blockId of new Set(readings.map((reading) => reading.blockId))) grounds.set(blockId, await loadBlockVines(estateId, blockId));
   const items = conflicts.map((conflict) => cardOf(conflict, { access, grounds, people, rounds, readings: inOrderOfTaking(conflict.readingIds.map((id) => chains.get(id) ?? [])).filter(isOnVine) }));
-  return { items, total: items.length, open: items.filter(({ state }) => state === 'open').length };
+  const bags = await bagClashes(access);
+  return { items, bags, total: items.length + bags.length, open: items.filter(({ state }) => state === 'open').length + bags.length };
 }
 
 export function settlesAll(access: Access): boolean {
   return reachOf(access.roles, 'conflicts.settle') === 'do';
 }
 
-/** Conflicts are about vines; bags have theirs at the lab. */
+/** Cards of readings are about vines; a label on two bags is a card of its own. */
 type VineReading = Reading & { blockId: string };
 const isOnVine = (reading: Reading): reading is VineReading => reading.blockId !== null;
 

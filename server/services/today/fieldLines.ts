@@ -3,6 +3,7 @@ import { reachOf } from '../../../shared/catalog/permissions.ts';
 import type { NoticeBody } from '../../../shared/contracts/notices.ts';
 import type { TodayOf } from '../../../shared/contracts/today.ts';
 import type { Access } from '../../access/access.ts';
+import { Bag } from '../../models/Bag.ts';
 import { NoticeReader } from '../../models/NoticeReader.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { Reading } from '../../models/Reading.ts';
@@ -53,6 +54,12 @@ export async function noticeLines({ estateId, personId }: Access, { day }: Momen
 export async function conflictLines({ estateId }: Access): Promise<TodayOf<'conflict'>[]> {
   const total = await ReadingConflict.query().where({ estateId, state: 'open' }).resultSize();
   return total > 0 ? [{ kind: 'conflict', total }] : [];
+}
+
+/** Labels that are on two bags, until somebody says which is which. */
+export async function labelLines({ estateId }: Access): Promise<TodayOf<'labelTwice'>[]> {
+  const total = await Bag.query().where({ estateId }).whereNotNull('clashesWith').whereNot({ state: 'void' }).resultSize();
+  return total > 0 ? [{ kind: 'labelTwice', total }] : [];
 }
 
 /** Vines that the crew marked as missing, dead or otherwise, block by block, until somebody takes them over. */

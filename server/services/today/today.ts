@@ -3,7 +3,7 @@ import type { TodayLine, TodayView } from '../../../shared/contracts/today.ts';
 import type { Access } from '../../access/access.ts';
 import { dayIn } from '../../../shared/season/dayIn.ts';
 import { Estate } from '../../models/Estate.ts';
-import { conflictLines, markLines, noticeLines, roundLines } from './fieldLines.ts';
+import { conflictLines, labelLines, markLines, noticeLines, roundLines } from './fieldLines.ts';
 import { lackingLines, questionLines, restrictionLines, zoningLines } from './groundLines.ts';
 import { backupLines, bagLines, lotLines, mailLines, provisionalLines } from './houseLines.ts';
 import { countSetUp } from './setUp.ts';
@@ -22,6 +22,7 @@ const gatherers: readonly (readonly [Permission, Reach, Gather])[] = [
   ['notices.acknowledge', 'own', noticeLines],
   ['readings.record', 'own', roundLines],
   ['readings.correct', 'do', conflictLines],
+  ['labels.settle', 'do', labelLines],
   ['layers.import', 'do', questionLines],
   ['zones.edit', 'propose', zoningLines],
   ['plans.margins', 'propose', lackingLines],

@@ -54,6 +54,7 @@ const words: { [Kind in TodayLine['kind']]: Words<Kind> } = {
     to: (line.isMine ? placeOf('fieldWalk', { roundId: line.id }) : null) ?? placeOf('targets', { planId: line.planId }),
   }),
   conflict: (line, { t, format, placeOf }) => ({ title: t('today.conflict', { n: format.number(line.total) }, line.total), detail: t('today.conflictDetail'), when: { kind: 'asks', text: t('today.asks') }, to: placeOf('conflicts') }),
+  labelTwice: (line, { t, format, placeOf }) => ({ title: t('today.labelTwice', { n: format.number(line.total) }, line.total), detail: t('today.labelTwiceDetail'), when: { kind: 'asks', text: t('today.asks') }, to: placeOf('conflicts') ?? placeOf('lab') }),
   question: (line, { t, placeOf }) => ({ title: t('today.question', { file: line.fileName }), detail: t('today.questionDetail'), when: { kind: 'asks', text: t('today.asks') }, to: placeOf('imports') }),
   proposal: (line, { t, format, placeOf }) => ({
     title: t('today.proposal', { block: line.blockName, number: line.number }),

@@ -19,6 +19,8 @@ export const newLabResult = z.object({
   analysedOn: isoDate.nullable().default(null),
   /** The figure that this one corrects. */
   supersedes: id.nullable().default(null),
+  /** Figures that stood in the cell when it was typed: one that came meanwhile is not passed over. Null where nobody looked. */
+  seen: z.array(id).max(100).nullable().default(null),
   /** Needed to correct a figure that was checked. */
   reason: z.string().trim().max(300).default(''),
 });

@@ -1,6 +1,8 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { Bag } from '../../server/models/Bag.ts';
+import { Estate } from '../../server/models/Estate.ts';
 import { LabMapping } from '../../server/models/LabMapping.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { closeBags } from '../../server/services/bags/closeBags.ts';
@@ -49,6 +51,38 @@ const base = () => `/api/estates/${estate.estateId}/lab`;
 const bench = async () => (await lab.get(base())).body as LabBench;
 const result = (over: Record<string, unknown> = {}) => ({ id: randomUUID(), code: A, measureCode: 'brix', typed: '23,4', ...over });
 const type = async (...results: object[]) => (await lab.post(`${base()}/results`, { results })).body.outcomes as LabOutcome[];
+
+describe('two people at one bench', () => {
+  it('see each other: a figure that came meanwhile is neither doubled nor corrected unseen', async () => {
+    const mine = result({ typed: '23,4', seen: [] });
+    const theirs = result({ typed: '23,9', seen: [] });
+    expect((await type(mine))[0]!.state).toBe('received');
+    const [refused] = await type(theirs);
+    expect(refused).toMatchObject({ state: 'refused', reason: expect.stringContaining('23,4 was stored there meanwhile') });
+    expect((await type(mine))[0]!.state).toBe('received');
+    expect((await type({ ...theirs, id: randomUUID(), seen: [mine.id] }))[0]!.state).toBe('received');
+    const [one, other] = [result({ code: B, typed: '22', seen: [] }), result({ code: B, typed: '22,1', seen: [] })];
+    const states = (await Promise.all([type(one), type(other)])).map(([outcome]) => outcome!.state);
+    expect(states.sort()).toEqual(['received', 'refused']);
+    // Two readings of one cell come together, and neither is news to the other.
+    expect((await type(result({ measureCode: 'ph', typed: '3,4', seen: [] }), result({ measureCode: 'ph', typed: '3,5', seen: [] }))).map(({ state }) => state)).toEqual(['received', 'received']);
+    expect((await bench()).results).toHaveLength(5);
+  });
+});
+
+describe('the day of picking', () => {
+  afterAll(() => Estate.query().findById(estate.estateId).patch({ timeZone: 'Europe/Paris' }));
+
+  it('is that of the estate: bags of one morning are one group, whatever day it is at Greenwich', async () => {
+    await Estate.query().findById(estate.estateId).patch({ timeZone: 'Pacific/Auckland' });
+    // 08:30 and 13:30 of one day at the estate, either side of midnight at Greenwich.
+    const day = new Date(Date.now() - 3 * 86_400_000).toISOString().slice(0, 10);
+    await Bag.query().findOne({ code: A }).patch({ closedAt: new Date(`${day}T20:30:00Z`) });
+    await Bag.query().findOne({ code: B }).patch({ closedAt: new Date(Date.parse(`${day}T20:30:00Z`) + 5 * 3_600_000) });
+    await type(result(), result({ code: B }));
+    expect((await bench()).groups.map(({ resultIds }) => resultIds.length)).toEqual([2]);
+  });
+});
 
 describe('figures typed at the bench', () => {
   it('are stored once however often they are sent, provisional, with instrument and what was typed', async () => {

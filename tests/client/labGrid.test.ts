@@ -18,6 +18,11 @@ describe('a cell of the grid', () => {
   it('adds each reading of a bag as a figure of its own', () => expect(made('23,4 / <0,1')).toMatchObject({ figures: [{ id: 'a', typed: '23,4', supersedes: null }, { id: 'b', typed: '<0,1' }], needsReason: false }));
   it('leaves what is stored alone and corrects what changed', () => expect(made('23.4 / 22', [stored('23.4'), stored('21')])).toMatchObject({ figures: [{ id: 'b', typed: '22', supersedes: 'id of 21' }] }));
   it('needs a reason to change a checked figure', () => expect(made('22', [stored('21', 'checked')])).toMatchObject({ needsReason: true }));
+  it('does not pass over a figure that somebody else stored since it was typed', () => {
+    const cell = (seen: string[]) => figuresOf({ place, draft: { text: '23.6', ids: ['a'], seen }, stored: [stored('23.4')], setup: noSetup, reason: '' });
+    expect(cell([])).toEqual({ trouble: 'meanwhile', at: '23.4' });
+    expect(cell(['id of 23.4'])).toMatchObject({ figures: [{ typed: '23.6', supersedes: 'id of 23.4', seen: ['id of 23.4'] }] });
+  });
   it('does not let a stored figure be deleted', () => expect(made('', [stored('21')])).toMatchObject({ trouble: 'fewer', at: '21' }));
   it('says what cannot be read, or cannot be in the unit', () => {
     expect(made('sweet')).toMatchObject({ trouble: 'unreadable' });

@@ -1,16 +1,19 @@
 import type { LabBench, LabResult } from '../../../shared/contracts/lab.ts';
 import { measures as catalog } from '../../../shared/catalog/measures.ts';
 import type { Access } from '../../access/access.ts';
+import { Estate } from '../../models/Estate.ts';
 import { LabFile } from '../../models/LabFile.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Person } from '../../models/Person.ts';
-import { Reading } from '../../models/Reading.ts';
+import type { Reading } from '../../models/Reading.ts';
 import { listBags } from '../bags/listBags.ts';
 import { judgeResults } from './judgeResults.ts';
+import { newestResults } from './newestResults.ts';
 
 /** Everything on the lab's bench: bags, the measures of the lab, their newest figures, and how those stand to each other. */
 export async function labBench(access: Access, now: Date): Promise<LabBench> {
   const { estateId } = access;
+  const { timeZone } = await Estate.query().findById(estateId).select('timeZone').throwIfNotFound();
   const bags = await listBags(access, { now });
   const measures = await MeasureRecord.query().where({ estateId, measuredIn: 'lab' }).orderBy('code');
   const place = (code: string) => (catalog.findIndex((measure) => measure.code === code) + 1 || catalog.length + 1);
@@ -28,19 +31,8 @@ export async function labBench(access: Access, now: Date): Promise<LabBench> {
   }));
   return {
     measures: measures.map(({ code, name, unit, decimals, minimum, maximum, confidence, inUse }) => ({ code, name, unit, decimals, minimum, maximum, confidence, inUse })),
-    bags, results, groups: judgeResults(results, bags, measures),
+    bags, results, groups: judgeResults(results, bags, { measures, timeZone }),
   };
 }
 
 const flagsOf = (row: Reading) => row.flags as string[];
-
-/** Figures of these bags; a corrected one gives way to its correction. */
-async function newestResults(estateId: string, bagIds: readonly string[]): Promise<Reading[]> {
-  return Reading.query()
-    .where('readings.estateId', estateId)
-    .where('readings.source', 'lab')
-    .whereIn('readings.bagId', bagIds)
-    .whereNotExists(Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId'))
-    .orderBy('receivedAt')
-    .orderBy('id');
-}

@@ -5,17 +5,19 @@ import { countedValue } from '../../../shared/lab/belowDetection.ts';
 import { flagWithinGroups } from '../../../shared/sampling/outliers.ts';
 import { intervalOf, meanEstimate } from '../../../shared/sampling/precision.ts';
 import { summarise } from '../../../shared/sampling/variances.ts';
+import { dayIn } from '../../../shared/season/dayIn.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 
 /**
- * Figures of a measure by zone and day. Marked are those far from the rest of their zone by the modified z-score with one
- * scale for all zones of the day (Iglewicz & Hoaglin 1993, limit 3.5), and those outside the usual range. Marked figures
- * count like any other until somebody leaves them out with a reason; the interval is shown both ways.
+ * Figures of a measure by zone and day of picking, by the estate's own calendar. Marked are those far from the rest of their
+ * zone by the modified z-score with one scale for all zones of the day (Iglewicz & Hoaglin 1993, limit 3.5), and those
+ * outside the usual range. Marked figures count like any other until somebody leaves them out with a reason; the interval
+ * is shown both ways.
  */
-export function judgeResults(results: readonly LabResult[], bags: readonly BagLine[], measures: readonly MeasureRecord[]): LabGroup[] {
+export function judgeResults(results: readonly LabResult[], bags: readonly BagLine[], { measures, timeZone }: { measures: readonly MeasureRecord[]; timeZone: string }): LabGroup[] {
   const bagOf = new Map(bags.map((bag) => [bag.id, bag]));
   const placed = results.filter(({ bagId }) => bagOf.get(bagId)?.closedAt);
-  const dayOf = (result: LabResult) => bagOf.get(result.bagId)!.closedAt!.slice(0, 10);
+  const dayOf = (result: LabResult) => dayIn(timeZone, new Date(bagOf.get(result.bagId)!.closedAt!));
   const days = groupBy(placed, (result) => `${result.measureCode}|${bagOf.get(result.bagId)!.blockId}|${dayOf(result)}`);
   return [...days.values()].flatMap((ofDay) => {
     const measure = measures.find(({ code }) => code === ofDay[0]!.measureCode);

@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import { newLabResult, type LabOutcome, type NewLabResult } from '../../../shared/contracts/lab.ts';
 import { entryValues, type EntryValue } from '../../../shared/lab/entryText.ts';
+import { groupBy } from '../../../shared/groupBy.ts';
 import { unitsOf } from '../../../shared/lab/units.ts';
 import type { Access } from '../../access/access.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
@@ -9,18 +10,22 @@ import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from '../bags/bagContext.ts';
 import { seasonFinder } from '../bags/labels.ts';
+import { newestResults } from './newestResults.ts';
 
 interface Context {
   bags: Map<string, Bag>;
   seasonOf: (bag: Bag) => string;
   measures: Map<string, MeasureRecord>;
   known: Map<string, Reading>;
+  /** Newest figures of these bags before this batch, by bag and measure. */
+  standing: Map<string, Reading[]>;
 }
 
 /**
  * Stores figures typed at the bench as provisional results of the bags that carry the labels. Safe to repeat: a figure
  * whose id is known is not stored again. A correction is a figure of its own that names the one before; each item has
- * its own outcome, so that one bad cell never holds back the rest.
+ * its own outcome, so that one bad cell never holds back the rest. A figure that somebody else stored in the cell since
+ * it was typed refuses it: whoever typed must have seen what they correct or repeat.
  */
 export async function recordResults(access: Access, input: { results: unknown[] }, now: Date): Promise<LabOutcome[]> {
   return Reading.transaction(async (trx) => {
@@ -53,20 +58,28 @@ function idOf(raw: unknown): string {
 }
 
 async function loadContext(trx: Transaction, { estateId }: Access, results: readonly NewLabResult[]): Promise<Context> {
+  // Two people at one bag must see each other.
+  await trx.raw('select pg_advisory_xact_lock(hashtext(?))', [`bags ${estateId}`]);
   const bags = await holdersOf(trx, estateId, results.map(({ code }) => code));
   const seasonOf = await seasonFinder(trx, estateId);
   const measures = await MeasureRecord.query(trx).where({ estateId });
   const known = await Reading.query(trx).where({ estateId }).whereIn('id', results.flatMap(({ id, supersedes }) => (supersedes === null ? [id] : [id, supersedes])));
-  return { bags: new Map(bags.map((bag) => [bag.code, bag])), seasonOf, measures: new Map(measures.map((measure) => [measure.code, measure])), known: new Map(known.map((reading) => [reading.id, reading])) };
+  const standing = groupBy(await newestResults(estateId, bags.map(({ id }) => id), trx), cellOf);
+  return { standing, bags: new Map(bags.map((bag) => [bag.code, bag])), seasonOf, measures: new Map(measures.map((measure) => [measure.code, measure])), known: new Map(known.map((reading) => [reading.id, reading])) };
 }
 
-function refusalOf(result: NewLabResult, { bags, measures, known }: Context): string | null {
+const cellOf = ({ bagId, measureCode }: Pick<Reading, 'bagId' | 'measureCode'>) => `${bagId} ${measureCode}`;
+
+function refusalOf(result: NewLabResult, { bags, measures, known, standing }: Context): string | null {
   if (!bags.has(result.code)) return `No bag carries the label ${result.code}. Take it in on the receiving list first.`;
   const measure = measures.get(result.measureCode);
   if (!measure) return `There is no measure "${result.measureCode}" in this estate.`;
   if (result.unit !== null && !unitsOf(measure.code).some(({ id }) => id === result.unit)) return `${measure.code} is not measured in "${result.unit}" here.`;
   if (valueOf(result) === null) return `"${result.typed}" is not a figure. Type it with point or comma, or "<" and the limit.`;
   if (Number.isNaN(convert(result, valueOf(result)!.value))) return `${result.typed} cannot be in this unit. Check figure and unit.`;
+  const { seen } = result;
+  const meanwhile = seen === null ? [] : (standing.get(cellOf({ bagId: bags.get(result.code)!.id, measureCode: measure.code })) ?? []).filter(({ id }) => !seen.includes(id));
+  if (meanwhile.length > 0) return `${result.code}, ${measure.code}: ${meanwhile.map(({ valueTyped, value }) => valueTyped ?? String(value)).join(' / ')} was stored there meanwhile. Look at it, then type ${result.typed} again as a correction or beside it.`;
   if (result.supersedes === null) return null;
   const before = known.get(result.supersedes);
   if (!before || before.measureCode !== result.measureCode) return 'The figure that this one corrects is not known here.';

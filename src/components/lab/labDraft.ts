@@ -6,6 +6,8 @@ import { labUnit, unitsOf } from '../../../shared/lab/units.ts';
 export interface DraftCell {
   readonly text: string;
   readonly ids: readonly string[];
+  /** Ids of the figures that stood in the cell when it was typed. */
+  readonly seen?: readonly string[];
 }
 
 /** How a measure is measured today. */
@@ -29,7 +31,7 @@ export function storedText(results: readonly LabResult[]): string {
   return results.map(({ typed, value }) => typed ?? String(value)).join(' / ');
 }
 
-export type CellTrouble = 'unreadable' | 'thousands' | 'fewer' | 'unit';
+export type CellTrouble = 'unreadable' | 'thousands' | 'fewer' | 'unit' | 'meanwhile';
 
 export interface NewFigure {
   readonly id: string;
@@ -40,6 +42,7 @@ export interface NewFigure {
   readonly instrument: string;
   readonly method: string;
   readonly supersedes: string | null;
+  readonly seen: readonly string[] | null;
   readonly reason: string;
 }
 
@@ -52,11 +55,13 @@ interface CellInput {
 }
 
 /**
- * The figures that a cell adds or corrects. What stands there as before is left alone; a figure cannot be deleted, only
+ * The figures that a cell adds or corrects; none where somebody else stored one there since it was typed. What stands there as before is left alone; a figure cannot be deleted, only
  * left out with a reason among the results.
  */
 export function figuresOf({ place, draft, stored, setup, reason }: CellInput): { figures: NewFigure[]; needsReason: boolean } | { trouble: CellTrouble; at: string } {
   const entry = entryValues(draft.text);
+  const meanwhile = draft.seen === undefined ? [] : stored.filter(({ id }) => !draft.seen!.includes(id));
+  if (meanwhile.length > 0) return { trouble: 'meanwhile', at: storedText(meanwhile) };
   if ('problem' in entry) return { trouble: entry.problem, at: entry.at };
   if (entry.values.length < stored.length) return { trouble: 'fewer', at: storedText(stored) };
   const shown = unitsOf(place.measure).find(({ id }) => id === setup.unit)?.shown ?? null;
@@ -67,7 +72,7 @@ export function figuresOf({ place, draft, stored, setup, reason }: CellInput): {
   });
   const impossible = changed.find(({ value }) => setup.unit !== null && Number.isNaN(labUnit(setup.unit)?.convert(value.value) ?? 0));
   if (impossible) return { trouble: 'unit', at: impossible.value.typed };
-  const figures = changed.map(({ value, before, id }) => ({ id, code: place.code, measureCode: place.measure, typed: value.typed, unit: setup.unit, instrument: setup.instrument, method: setup.method, supersedes: before?.id ?? null, reason }));
+  const figures = changed.map(({ value, before, id }) => ({ id, code: place.code, measureCode: place.measure, typed: value.typed, unit: setup.unit, instrument: setup.instrument, method: setup.method, supersedes: before?.id ?? null, seen: draft.seen ?? null, reason }));
   return { figures, needsReason: changed.some(({ before }) => before !== null && before.state !== 'provisional') };
 }
 

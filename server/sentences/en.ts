@@ -92,6 +92,7 @@ export const en = {
   ticketTwice: 'Ticket {ticketNo} is entered already. If it was wrong, correct it.',
   noBlock: 'The split names a block that is not in this estate.',
   notOfLot: 'The split names {part}, but no vine of the lot "{lot}" stands there, so its weight would count for no zone. In this lot today: {zones}. Choose one of these, leave the load whole, or choose the lot that it came from.',
+  lotHasTickets: 'The lot "{lot}" has scale tickets, corrected since. Tickets are kept, so it cannot be deleted: give it other zones or another name.',
   notOfSeason: '{day} lies outside season {season}, whose fruit comes in from {from} to {to} at the latest. Check the year.',
   tableQuestions: 'Answer what is asked about the table first; nothing was kept.',
   tableProblems: '{n} lines of the table cannot be used; nothing was kept. Correct them and read it again.',

@@ -93,6 +93,7 @@ export const es: Record<SentenceKey, string> = {
   ticketTwice: 'El boletín {ticketNo} ya está anotado. Si estaba mal, corríjalo.',
   noBlock: 'El reparto nombra una parcela que no está en esta finca.',
   notOfLot: 'El reparto nombra {part}, pero ninguna cepa del lote «{lot}» está ahí: ese peso no contaría para ninguna zona. En este lote hoy: {zones}. Elija una de estas, deje la carga entera o elija el lote del que vino.',
+  lotHasTickets: 'El lote «{lot}» tiene boletines de pesaje, corregidos después. Los boletines se guardan, así que no se puede borrar: dele otras zonas u otro nombre.',
   notOfSeason: 'El {day} queda fuera de la campaña {season}, cuya uva entra del {from} al {to} a más tardar. Revise el año.',
   tableQuestions: 'Responda antes a lo que se pregunta sobre la tabla; no se guardó nada.',
   tableProblems: '{n} líneas de la tabla no se pueden usar; no se guardó nada. Corríjalas y léala otra vez.',

@@ -93,6 +93,7 @@ export const fr: Record<SentenceKey, string> = {
   ticketTwice: 'Le bon {ticketNo} est déjà saisi. S’il était faux, corrigez-le.',
   noBlock: 'La répartition nomme une parcelle qui n’est pas de ce domaine.',
   notOfLot: 'La répartition nomme {part}, mais aucun cep du lot « {lot} » ne s’y trouve : ce poids ne compterait pour aucune zone. Dans ce lot aujourd’hui : {zones}. Choisissez-en une, laissez la charge entière, ou choisissez le lot d’où elle vient.',
+  lotHasTickets: 'Le lot « {lot} » a des bons de pesée, corrigés depuis. Les bons se gardent, il ne peut donc être supprimé : donnez-lui d’autres zones ou un autre nom.',
   notOfSeason: 'Le {day} est hors de la campagne {season}, dont la récolte rentre du {from} au {to} au plus tard. Vérifiez l’année.',
   tableQuestions: 'Répondez d’abord aux questions sur le tableau ; rien n’a été gardé.',
   tableProblems: 'Lignes du tableau inutilisables : {n}. Rien n’a été gardé. Corrigez-les et faites relire le tableau.',

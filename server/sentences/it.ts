@@ -93,6 +93,7 @@ export const it: Record<SentenceKey, string> = {
   ticketTwice: 'La bolletta {ticketNo} è già inserita. Se era sbagliata, correggerla.',
   noBlock: 'La ripartizione nomina un appezzamento che non è di questa tenuta.',
   notOfLot: 'La ripartizione nomina {part}, ma nessuna vite del lotto «{lot}» si trova lì: quel peso non conterebbe per nessuna zona. In questo lotto oggi: {zones}. Sceglierne una, lasciare intero il carico, o scegliere il lotto da cui viene.',
+  lotHasTickets: 'Il lotto «{lot}» ha bollette di pesata, corrette in seguito. Le bollette si conservano, quindi non si può eliminare: dargli altre zone o un altro nome.',
   notOfSeason: 'Il {day} è fuori dalla stagione {season}, la cui uva entra dal {from} al {to} al più tardi. Verificare l’anno.',
   tableQuestions: 'Rispondere prima alle domande sulla tabella; nulla è stato tenuto.',
   tableProblems: 'Righe della tabella che non si possono usare: {n}. Nulla è stato tenuto. Correggerle e far rileggere la tabella.',

@@ -37,7 +37,8 @@ export const newTicket = z
     corrects: id.nullable().default(null),
     note: z.string().trim().max(500).default(''),
   })
-  .refine((ticket) => ticket.tare < ticket.gross, { path: ['tare'], message: 'The tare must be below the gross weight. Check which is which.' })
+  // A correction may take its load out: gross and tare are alike then.
+  .refine((ticket) => ticket.tare < ticket.gross || (ticket.corrects !== null && ticket.tare === ticket.gross), { path: ['tare'], message: 'The tare must be below the gross weight. Check which is which.' })
   .refine((ticket) => ticket.gross * kgPerUnit[ticket.unit] <= mostLoadKg, { path: ['gross'], message: 'More than 200 t on one ticket. Check the weight and its unit.' })
   .refine((ticket) => ticket.corrects === null || ticket.note !== '', { path: ['note'], message: 'Say why the ticket is corrected.' });
 export type NewTicket = z.infer<typeof newTicket>;

@@ -10,6 +10,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
+import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
 import { Zone } from '../../models/Zone.ts';
@@ -124,6 +125,7 @@ export async function deleteLot(access: Access, lotId: string, version: number):
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
     requireDraft(lot);
+    if ((await ScaleTicket.query(trx).where({ estateId: access.estateId, lotId }).resultSize()) > 0) throw new Unusable('lotHasTickets', say('lotHasTickets', { lot: lot.name }));
     await lot.$query(trx).delete();
     await writeAudit(trx, access, { action: 'lots.delete', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, before: { wineType: lot.wineType, pickOn: lot.pickOn } });
   });

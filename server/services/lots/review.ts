@@ -10,6 +10,7 @@ import { Estate } from '../../models/Estate.ts';
 import { PickNotice } from '../../models/PickNotice.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { findScenario, lotViews } from './board.ts';
+import { countingTickets } from './countingTickets.ts';
 import { loadBoardGround, type BoardGround } from './boardGround.ts';
 import { lotsThen } from './lotsThen.ts';
 import { forecastDates, lotForecast, reviewZones, type KnownOn } from './reviewZones.ts';
@@ -34,7 +35,7 @@ export async function seasonReview(access: Access, options: { today: string }): 
     ScaleTicket.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)),
     PickNotice.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)).orderBy('number'),
   ]);
-  const counting = tickets.filter((ticket) => !tickets.some((other) => other.corrects === ticket.id));
+  const counting = countingTickets(tickets);
   const dayOf = (at: Date) => dayIn(timeZone, at);
   const firstDays = lots.map((lot) => counting.filter((ticket) => ticket.lotId === lot.id).map(({ weighedAt }) => dayOf(weighedAt)).sort()[0] ?? null);
   const knownOn = await knownOnDays(estateId, ground, { scenarioId: scenario.id, days: [...firstDays.flatMap((day) => day ?? []), ...ground.blocks.flatMap((block) => forecastDates(ground, counting, { block, dayOf }))] });

@@ -6,6 +6,7 @@ import { Clash, Unusable } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
+import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -33,7 +34,7 @@ export async function copyLots(trx: Transaction, access: Access, { lots, to }: {
 }
 
 /**
- * Takes a what-if over: the drafts in force give way to its lots. Confirmed and picked lots stand; a lot of the what-if
+ * Takes a what-if over: the drafts in force give way to its lots. Confirmed and picked lots stand, as do those that tickets name; a lot of the what-if
  * with the name of one of them is taken for it and left out.
  */
 export async function applyScenario(access: Access, scenarioId: string): Promise<{ id: string }> {
@@ -42,8 +43,10 @@ export async function applyScenario(access: Access, scenarioId: string): Promise
     if (from.isLive) throw new Unusable('isLive', say('scenarioIsLive'));
     const live = await Scenario.query(trx).findOne({ estateId: access.estateId, seasonId: from.seasonId, isLive: true }).forUpdate().throwIfNotFound();
     const standing = await Lot.query(trx).where({ estateId: access.estateId, scenarioId: live.id });
-    const firm = standing.filter(({ state }) => state !== 'draft');
-    await Lot.query(trx).where({ estateId: access.estateId, scenarioId: live.id, state: 'draft' }).delete();
+    const weighed = await ScaleTicket.query(trx).where({ estateId: access.estateId }).whereIn('lotId', standing.map(({ id }) => id)).distinct('lotId');
+    // Tickets are kept whatever became of their load, and so is the lot they name.
+    const firm = standing.filter(({ id, state }) => state !== 'draft' || weighed.some(({ lotId }) => lotId === id));
+    await Lot.query(trx).where({ estateId: access.estateId, scenarioId: live.id }).whereNotIn('id', firm.map(({ id }) => id)).delete();
     const lots = (await Lot.query(trx).where({ estateId: access.estateId, scenarioId: from.id })).filter((lot) => !firm.some(({ name }) => name === lot.name));
     const shared = await vinesShared(trx, access, { lots, firm });
     if (shared) throw new Clash('vineTwice', say('vinesInLiveLot', { inLive: shared.inLive, inWhatIf: shared.inWhatIf }));

@@ -14,6 +14,7 @@ import { Scenario } from '../../models/Scenario.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Season } from '../../models/Season.ts';
 import { findScenario } from './board.ts';
+import { keepPicked } from './countingTickets.ts';
 import { requireFruitDay } from './fruitDay.ts';
 import { zonesInLot } from './zonesInLot.ts';
 import { say } from '../../sentences/say.ts';
@@ -23,7 +24,7 @@ const splitToleranceKg = 1;
 
 /**
  * Keeps a scale ticket as it was handed over. Tickets are never changed: a correction is a new one that names the one
- * it corrects, and only the newest of such a chain counts.
+ * it corrects, and only the newest of such a chain counts. One with a net of 0 takes its load out.
  */
 export async function enterTicket(access: Access, input: NewTicket, now: Date): Promise<{ id: string }> {
   const { estateId } = access;
@@ -34,7 +35,7 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     const scenario = await Scenario.query(trx).findOne({ estateId, id: lot.scenarioId }).throwIfNotFound();
     if (!scenario.isLive) throw new Unusable('whatIf', say('ticketOfWhatIf'));
     await requireFruitDay(trx, lot, dayIn((await Estate.query(trx).findById(estateId).throwIfNotFound()).timeZone, new Date(input.weighedAt)));
-    const known = await ScaleTicket.query(trx).where({ estateId }).select('id', 'ticketNo', 'corrects');
+    const known = await ScaleTicket.query(trx).where({ estateId }).select('id', 'ticketNo', 'corrects', 'lotId');
     const corrected = input.corrects === null ? null : known.find((ticket) => ticket.id === input.corrects);
     if (corrected === undefined) throw new Unusable('noTicket', say('noTicket'));
     if (corrected && known.some((ticket) => ticket.corrects === corrected.id)) throw new Clash('correctedAlready', say('correctedAlready', { ticketNo: corrected.ticketNo }));
@@ -42,7 +43,7 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     const factor = kgPerUnit[input.unit];
     requireSplitAddsUp(input.split, (input.gross - input.tare) * factor);
     const ticket = await ScaleTicket.query(trx).insert({ estateId, lotId: lot.id, ticketNo: input.ticketNo, grossKg: input.gross * factor, tareKg: input.tare * factor, unitTyped: input.unit, weighedAt: new Date(input.weighedAt), split: input.split, corrects: input.corrects, note: input.note, enteredBy: access.personId, enteredAt: now } as never);
-    if (lot.state !== 'picked') await lot.$query(trx).patch({ state: 'picked', version: lot.version + 1 });
+    await keepPicked(trx, access, [lot.id, ...(corrected ? [corrected.lotId] : [])]);
     await writeAudit(trx, access, { action: corrected ? 'tickets.correct' : 'tickets.enter', subjectType: 'ticket', subjectId: ticket.id, subjectName: input.ticketNo, after: input, reason: input.note || null });
     return { id: ticket.id };
   });

@@ -7,6 +7,7 @@ import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { isBearing } from '../../ground/blockVines.ts';
 import { loadBoardGround, type BoardBlock, type BoardGround, type Then } from './boardGround.ts';
+import { countingTickets } from './countingTickets.ts';
 import { assumedLosses, boardConfidence, noFactors, type UsedFactors } from './zoneOutlook.ts';
 
 /** What one lot says of a factor. */
@@ -40,11 +41,11 @@ export async function factorCases(estateId: string, until: Date | null = null): 
   if (results.length === 0 && tickets.length === 0) return [];
   const newest = new Map(results.map((result) => [result.lotId, result]));
   const scenarios = await Scenario.query().where({ estateId, isLive: true });
+  const counting = countingTickets(tickets);
   const grounds = await Promise.all(scenarios.map((scenario) => loadBoardGround(estateId, scenario, noFactors)));
   return grounds.flatMap((ground) =>
     ground.lots.flatMap((lot, index) => {
-      const counting = tickets.filter((ticket) => ticket.lotId === lot.id && !tickets.some((other) => other.corrects === ticket.id));
-      const netT = counting.reduce((sum, { netKg }) => sum + netKg, 0) / 1000;
+      const netT = counting.filter(({ lotId }) => lotId === lot.id).reduce((sum, { netKg }) => sum + netKg, 0) / 1000;
       const about = { lotName: lot.name, seasonName: ground.season.name };
       return casesOf({ ground, index, wineType: lot.wineType, netT, result: newest.get(lot.id) ?? null }).map((one) => ({ ...one, ...about }));
     }),

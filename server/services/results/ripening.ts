@@ -16,6 +16,7 @@ import { endOfEstateDay } from '../../ground/estateDay.ts';
 import { isFirm, type ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
+import { weatherAt } from '../../models/WeatherHistory.ts';
 import { isSeasonOver, seasonOfBlock, seasonsOfBlock } from './seasonOfBlock.ts';
 import { loadZoneReadings, viewResults } from './zoneResults.ts';
 
@@ -73,8 +74,7 @@ export async function blockRipening(access: Access, blockId: string, options: Ri
 const firstSouthernZone = 32_700;
 
 async function weatherUntil(estateId: string, until: Date | null): Promise<WeatherDay[]> {
-  const query = WeatherDayRecord.query().where({ estateId }).orderBy('day');
-  return until === null ? query : query.where('enteredAt', '<=', until);
+  return until === null ? WeatherDayRecord.query().where({ estateId }).orderBy('day') : weatherAt(estateId, until);
 }
 
 function conditionsOf(visit: string, readings: readonly ZonedReading[], weather: readonly WeatherDay[]): RipeningView['conditions'][number] {

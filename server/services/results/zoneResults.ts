@@ -5,9 +5,10 @@ import { howManyMore, intervalOf, type Estimate } from '../../../shared/sampling
 import { stratifiedEstimate } from '../../../shared/sampling/stratified.ts';
 import type { Access } from '../../access/access.ts';
 import { isBearing, loadBlockVines, loadBlockVinesAt, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { loadMeasures } from '../../ground/measuresAt.ts';
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
-import { MeasureRecord } from '../../models/MeasureRecord.ts';
+import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Plan } from '../../models/Plan.ts';
 import { Round } from '../../models/Round.ts';
 import { Zone } from '../../models/Zone.ts';
@@ -41,7 +42,7 @@ export async function loadZoneReadings(access: Access, zoningId: string, options
   const ground = options.until ? await loadBlockVinesAt(access.estateId, zoning.blockId, options.until) : await loadBlockVines(access.estateId, zoning.blockId);
   const zoneOf = zonesOfVines(ground, zoning);
   const zones = await Zone.query().where({ estateId: access.estateId, zoningId }).orderBy('number').select('id', 'number', 'name', 'areaM2');
-  const measures = await MeasureRecord.query().where({ estateId: access.estateId }).orderBy('code');
+  const measures = await loadMeasures(access.estateId, options.until ?? null);
   const readings = await zonedReadings(access.estateId, { ground, zoneOf, seasonId: options.seasonId ?? zoning.seasonId, ...(options.until ? { until: options.until } : {}) });
   const measured = measures.filter((measure) => readings.some((reading) => reading.measureCode === measure.code));
   return { zoning, ground, zones, zoneOf, measures: measured, readings, bearing: countBearing(ground, zoneOf), poolsOfRound: await poolsOfRounds(access.estateId, zoning) };

@@ -15,6 +15,8 @@ export type VerdictReasonCode =
   | 'no-structure'
   | 'structure'
   | 'stripes-evened'
+  | 'stands-out'
+  | 'stands-out-apart'
   | 'plateaus'
   | 'slope-only'
   | 'one-layer'
@@ -77,8 +79,9 @@ export function judge({ areaM2, layerIds, structures, curve }: VerdictInput): Ve
   const isSmooth = hasStructure(values, meanStructure, highestStructure);
   // Swaths have levels of their own, which look like plateaus; steps count against missing structure only without stripes.
   const verdict: Verdict = !isSmooth && !(hasPlateaus && !isStriped) ? 'one' : hasPlateaus ? 'several' : 'test';
+  // Steps that outweigh missing structure are the reason then; "noise" beside them would contradict.
   const reasons: VerdictReason[] = [
-    reason(isSmooth ? 'structure' : 'no-structure', null, { value: meanStructure, highest: highestStructure, limit: values.length === 1 ? LEAST_SINGLE_STRUCTURE : LEAST_MEAN_STRUCTURE }),
+    ...(verdict === 'several' && !isSmooth ? [] : [reason(isSmooth ? 'structure' : 'no-structure', null, { value: meanStructure, highest: highestStructure, limit: values.length === 1 ? LEAST_SINGLE_STRUCTURE : LEAST_MEAN_STRUCTURE })]),
     reason(hasPlateaus ? 'plateaus' : 'slope-only', null, { value: best.gap, limit: gapLimit, deviations: best.gap / best.gapSd, k: best.k }),
     ...structures.flatMap((layer, i) => (layer.isStriped ? [reason('stripes-evened', layerIds[i]!, {})] : [])),
   ];

@@ -28,7 +28,12 @@ const LEAST_CORRELATION = 0.8;
 export function arePlateaus(profile: AcrossProfile, others: readonly AcrossProfile[], stepM: number): boolean {
   const explained = stairShare(profile, NARROWEST_TREAD_M / stepM);
   if (explained >= LEAST_EXPLAINED) return true;
-  return explained >= LEAST_EXPLAINED_TOGETHER && others.some((other) => Math.abs(correlation(profile.means, other.means)) >= LEAST_CORRELATION);
+  return explained >= LEAST_EXPLAINED_TOGETHER && stepTogether(profile, others);
+}
+
+/** Whether one of the others rises and falls with the profile. */
+export function stepTogether(profile: AcrossProfile, others: readonly AcrossProfile[]): boolean {
+  return others.some((other) => Math.abs(correlation(profile.means, other.means)) >= LEAST_CORRELATION);
 }
 
 /**

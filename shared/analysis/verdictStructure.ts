@@ -11,7 +11,7 @@ import { stripePattern, strongestProfile, withoutStripes } from './verdictStripe
 /** A patch narrower than this cannot be worked apart; one much wider is zoned whatever it is. */
 const NARROWEST_PATCH_M = 15;
 const WIDEST_PATCH_M = 40;
-const PROFILE_STEP_M = 3;
+export const PROFILE_STEP_M = 3;
 
 /** Width at which a layer must still resemble itself: a sixth of the block's width, 15 to 40 m. */
 export function patchWidthM(areaM2: number): number {

@@ -12,6 +12,7 @@ import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import type { Grid } from './grid.ts';
 import { allReachWidth } from './labelsWidth.ts';
 import { polygonise } from './polygonise.ts';
+import { withStandOut, zonesThatShow } from './verdictStandOut.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
 import { adviseZoneCount } from './zoneCount.ts';
@@ -27,7 +28,7 @@ import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
 import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '5';
+export const ENGINE_VERSION = '6';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
@@ -111,8 +112,13 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   const followed = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
   const own = followed.map(({ zones }) => zones);
   // A zone that one of several blocks lacks is no less a zone.
-  const count = adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable: workableNumbers(input.together?.length ? { zones: cleaned, grid: stacked.grid } : { zones: own, grid: input.grid }, options.smoothingM) });
-  const advisedK = evidence.verdict.verdict === 'one' ? 1 : count.best;
+  const workable = workableNumbers(input.together?.length ? { zones: cleaned, grid: stacked.grid } : { zones: own, grid: input.grid }, options.smoothingM);
+  const { verdict, count } = withStandOut(evidence.verdict, {
+    ground: evidence.standingOut,
+    count: adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable }),
+    shownBy: (ground) => zonesThatShow(ground, stacked.grid, workable.map((k) => ({ k, labels: cleaned[k - 1]!.labels }))),
+  });
+  const advisedK = verdict.verdict === 'one' || verdict.reasons.some(({ code }) => code === 'stands-out-apart') ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
@@ -128,7 +134,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     options,
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
     advisedWeights: withEdges(ground.advised, edges),
-    verdict: withFruit(evidence.verdict, fruit),
+    verdict: withFruit(verdict, fruit),
     fruit,
     advisedK,
     bestSeveral: count.best,

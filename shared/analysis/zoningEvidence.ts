@@ -8,6 +8,7 @@ import type { Cells, Grid } from './grid.ts';
 import { judge, type VerdictResult } from './verdict.ts';
 import { evidenceField, type EvidenceField } from './verdictField.ts';
 import { gapCurve, type GapAtK } from './verdictGap.ts';
+import { groundThatStandsOut, type StandingOut } from './verdictStandOut.ts';
 import { layerStructures, patchWidthM } from './verdictStructure.ts';
 import { streamOf } from './zoningFit.ts';
 import type { PreparedLayer } from './zoningPrepare.ts';
@@ -18,6 +19,7 @@ const MOST_GAP_CELLS = 2500;
 const CELLS_PER_PATCH = 4;
 const EVIDENCE_STREAM = 20;
 const HOLD_STREAM = 21;
+const STAND_OUT_STREAM = 22;
 
 export interface EvidenceInput {
   readonly grid: Grid;
@@ -45,6 +47,8 @@ export interface ZoningEvidence {
   readonly curve: readonly GapAtK[];
   /** Layers that the curve was made from. */
   readonly layerCount: number;
+  /** Looked for only where nothing resembles itself at the width of a patch. */
+  readonly standingOut: StandingOut | null;
 }
 
 /** Without a measured layer in use there will be no verdict; the curve is then made from the layers that are used. */
@@ -73,7 +77,9 @@ export function structuresOf(grid: Grid, layers: readonly { readonly id: string;
 export function weighEvidence({ areaM2, seed, gapField, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
   const curve = gapField === null ? [] : gapCurve(gapField, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
   const structures = structureField === null ? [] : layerStructures(structureField, areaM2);
-  return { verdict: judge({ areaM2, layerIds: measuredIds, structures, curve }), curve, layerCount: gapField?.layers.length ?? 0 };
+  const verdict = judge({ areaM2, layerIds: measuredIds, structures, curve });
+  const standingOut = gapField !== null && structures.length > 0 && verdict.reasons.every(({ code }) => code !== 'structure') ? groundThatStandsOut(gapField, streamOf(seed, STAND_OUT_STREAM)) : null;
+  return { verdict, curve, layerCount: gapField?.layers.length ?? 0, standingOut };
 }
 
 function weighted(field: EvidenceField, weights: readonly number[]): EvidenceField {

@@ -7,6 +7,7 @@ import { noiseKinds, slopeKinds } from './simulatedBlock.ts';
 export interface VerdictRow {
   readonly kind: PanelKind;
   readonly areaHa: number;
+  readonly layers: 2 | 3;
   readonly blocks: number;
   readonly one: number;
   readonly test: number;
@@ -20,15 +21,15 @@ export interface VerdictRow {
 /** What the verdict should say of each kind. */
 const wantedOf = (kind: PanelKind) => (kind === 'zones' || kind === 'straight' ? 'not one' : noiseKinds.some((noise) => noise === kind) ? 'one' : 'test');
 
-/** `perKind` blocks of each kind and size. */
-export function* benchVerdict(perKind: number, firstSeed: number): Generator<VerdictRow> {
+/** `perKind` blocks of each kind and size, with two or three measured layers. */
+export function* benchVerdict(perKind: number, firstSeed: number, layers: 2 | 3): Generator<VerdictRow> {
   for (const [areaHa, cellSizeM] of [[2, 2], [20, 3]] as const) {
     for (const kind of [...noiseKinds, ...slopeKinds, 'zones' as const, 'straight' as const]) {
-      const verdicts = judgedPanel({ kind, areaHa, cellSizeM, count: perKind, firstSeed }).map(({ verdict }) => verdict);
+      const verdicts = judgedPanel({ kind, areaHa, cellSizeM, count: perKind, firstSeed, layerCount: layers }).map(({ verdict }) => verdict);
       const count = (wanted: string) => verdicts.filter((verdict) => verdict === wanted).length;
       const wanted = wantedOf(kind);
       const right = wanted === 'not one' ? perKind - count('one') : count(wanted);
-      yield { kind, areaHa, blocks: perKind, one: count('one'), test: count('test'), several: count('several'), wanted, share: right / perKind, interval: wilson(right, perKind) };
+      yield { kind, areaHa, layers, blocks: perKind, one: count('one'), test: count('test'), several: count('several'), wanted, share: right / perKind, interval: wilson(right, perKind) };
     }
   }
 }

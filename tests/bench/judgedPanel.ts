@@ -1,10 +1,11 @@
 /** Simulated blocks of one kind with what the evidence stage says of each. */
 
+import { adviseLayers, layersToCompare } from '../../shared/analysis/layerAdvice.ts';
 import { seededRandom } from '../../shared/analysis/random.ts';
 import type { Verdict } from '../../shared/analysis/verdict.ts';
 import { adviseZoneCount } from '../../shared/analysis/zoneCount.ts';
-import { evidenceTask, weighEvidence } from '../../shared/analysis/zoningEvidence.ts';
-import { prepareLayers } from '../../shared/analysis/zoningPrepare.ts';
+import { evidenceTask, structuresOf, weighEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { decideWeights, prepareLayers } from '../../shared/analysis/zoningPrepare.ts';
 import { defaultZoningOptions } from '../../shared/analysis/zoningOptions.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { noiseBlock, slopeBlock, zonedBlock, type NoiseKind, type SimulatedBlock, type SlopeKind } from './simulatedBlock.ts';
@@ -19,6 +20,8 @@ export interface PanelOptions {
   readonly firstSeed: number;
   /** Width over which zones pass into each other; zones only. */
   readonly edgeM?: number;
+  /** Measured layers; two where nothing is said. */
+  readonly layerCount?: 2 | 3;
 }
 
 export interface JudgedBlock {
@@ -30,9 +33,9 @@ export interface JudgedBlock {
 export function judgedPanel(options: PanelOptions): JudgedBlock[] {
   return Array.from({ length: options.count }, (_, at) => {
     const block = blockOf(options, at);
-    const { verdict, curve, layerCount } = weighEvidence(evidenceTask({ ...evidenceOf(block), seed: options.firstSeed + at }));
+    const { verdict, curve, layerCount, standingOut } = weighEvidence(evidenceTask({ ...evidenceOf(block, options.layerCount ?? 2), seed: options.firstSeed + at }));
     const count = adviseZoneCount({ curve, layerCount, workable: [2, 3, 4, 5, 6] });
-    return { verdict: verdict.verdict, advisedK: count.best, trueK: block.k };
+    return { verdict: standingOut !== null && verdict.verdict === 'one' ? 'test' : verdict.verdict, advisedK: count.best, trueK: block.k };
   });
 }
 
@@ -52,7 +55,13 @@ function blockOf({ kind, areaHa, cellSizeM, firstSeed, edgeM = 6 }: PanelOptions
   return kind === 'white' || kind === 'short' || kind === 'stripes' ? noiseBlock(kind, options) : slopeBlock(kind, options);
 }
 
-function evidenceOf(block: SimulatedBlock) {
-  const { layers } = prepareLayers(block.grid, layersOf(block), defaultZoningOptions);
-  return { grid: block.grid, areaM2: block.areaM2, layers, weights: layers.map(() => 1) };
+/** As a zoning looks at the layers when all weights are left to the advice. */
+function evidenceOf(block: SimulatedBlock, layerCount: 2 | 3) {
+  const { grid, areaM2 } = block;
+  const third: ZoningLayer[] = layerCount === 3 ? [{ id: 'third', type: 'yield', role: 'evidence', kind: 'number', cells: block.third(), weight: null }] : [];
+  const { layers } = prepareLayers(grid, [...layersOf(block), ...third], defaultZoningOptions);
+  const advisable = layers.map((layer) => ({ ...layer, cells: layer.smoothed }));
+  const advised = adviseLayers(advisable, structuresOf(grid, layersToCompare(advisable), areaM2));
+  const scattered = new Set(advised.filter(({ code }) => code === 'scattered').map(({ id }) => id));
+  return { grid, areaM2, layers, weights: decideWeights(layers, advised), scattered };
 }

@@ -25,6 +25,8 @@ export interface SimulatedBlock {
   /** True zone 1…k per cell, 0 outside; all 1 for noise and slopes. */
   readonly truth: Uint8Array;
   readonly k: number;
+  /** A third layer measured on the vines by something else, as a yield monitor gives it; drawn when asked for, so that the others stay the same. */
+  readonly third: () => Cells;
 }
 
 export interface BlockOptions {
@@ -38,13 +40,13 @@ export function noiseBlock(kind: NoiseKind, options: BlockOptions): SimulatedBlo
   const { random } = options;
   const grid = simulatedGrid(options);
   const white = whiteField(grid, random);
-  const vigourOf: Record<NoiseKind, () => Float64Array> = {
-    white: () => white,
-    short: () => added(smoothField(grid, between(random, 3, 8), random), white, between(random, 0.2, 1)),
-    stripes: () => added(white, stripeField(grid, between(random, 12, 30), random), between(random, 0.5, 2)),
+  const seenIn: Record<NoiseKind, (white: Float64Array) => Float64Array> = {
+    white: (white) => white,
+    short: (white) => added(smoothField(grid, between(random, 3, 8), random), white, between(random, 0.2, 1)),
+    stripes: (white) => added(white, stripeField(grid, between(random, 12, 30), random), between(random, 0.5, 2)),
   };
   const soil = kind === 'short' ? smoothField(grid, between(random, 3, 10), random) : new Float64Array(white.length);
-  return finished(grid, options, { vigour: vigourOf[kind](), soil, soilNoise: between(random, 0.2, 1) });
+  return finished(grid, options, { vigour: seenIn[kind](white), soil, soilNoise: between(random, 0.2, 1), third: () => seenIn[kind](whiteField(grid, random)) });
 }
 
 /** A smooth change over the block, the same in both layers or one of its own in each, with 30 to 100 % noise. */
@@ -59,7 +61,7 @@ export function slopeBlock(kind: SlopeKind, options: BlockOptions): SimulatedBlo
   };
   const first = fieldOf[kind]();
   const soil = random() < 0.5 ? first.map((value) => -value) : fieldOf[kind]();
-  return finished(grid, options, { vigour: added(first, whiteField(grid, random), between(random, 0.3, 1)), soil, soilNoise: between(random, 0.3, 1) });
+  return finished(grid, options, { vigour: added(first, whiteField(grid, random), between(random, 0.3, 1)), soil, soilNoise: between(random, 0.3, 1), third: () => added(random() < 0.5 ? first : fieldOf[kind](), whiteField(grid, random), between(random, 0.3, 1)) });
 }
 
 export interface ZonedOptions extends BlockOptions {
@@ -83,20 +85,27 @@ export function zonedBlock(options: ZonedOptions): SimulatedBlock {
   const noise = 0.25 + 0.55 * difficulty;
   const vigour = added(added(level(steps), smoothField(grid, 30, random), 0.7 * noise), smoothField(grid, 9, random), 0.5 * noise);
   const soil = added(added(level(order.map((at) => steps[at]!)), smoothField(grid, 35, random), 0.7 * noise), smoothField(grid, 11, random), 0.4 * noise);
-  return { ...finished(grid, options, { vigour: added(vigour, whiteField(grid, random), 0.6 * noise), soil, soilNoise: 0.3 * noise }), truth, k };
+  const another = () => {
+    const again = shuffledLevels(k, random);
+    const field = added(added(level(again.map((at) => steps[at]!)), smoothField(grid, 32, random), 0.7 * noise), smoothField(grid, 10, random), 0.5 * noise);
+    return added(field, whiteField(grid, random), 0.6 * noise);
+  };
+  return { ...finished(grid, options, { vigour: added(vigour, whiteField(grid, random), 0.6 * noise), soil, soilNoise: 0.3 * noise, third: another }), truth, k };
 }
 
 interface Raw {
   readonly vigour: Float64Array;
   readonly soil: Float64Array;
   readonly soilNoise: number;
+  readonly third: () => Float64Array;
 }
 
 /** Vigour as a camera gives it, conductivity measured along rows and interpolated. */
 function finished(grid: Grid, { areaHa, random }: BlockOptions, raw: Raw): SimulatedBlock {
-  const vigour = Float32Array.from(raw.vigour, (value, cell) => (grid.share[cell]! > 0 ? 0.65 + 0.06 * value : NaN));
+  const cellsOf = (field: Float64Array, level: number, spread: number) => Float32Array.from(field, (value, cell) => (grid.share[cell]! > 0 ? level + spread * value : NaN));
+  const vigour = cellsOf(raw.vigour, 0.65, 0.06);
   const survey = surveyAlongRows(grid, raw, random);
-  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, survey), survey, truth: Uint8Array.from(grid.inside), k: 1 };
+  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, survey), survey, truth: Uint8Array.from(grid.inside), k: 1, third: () => cellsOf(raw.third(), 8, 1.5) };
 }
 
 function surveyAlongRows(grid: Grid, { soil, soilNoise }: Raw, random: Random): ValuedPoints {

@@ -53,6 +53,8 @@ export const en = {
     plateaus: 'They show plateaus with steps between them, not only a slope.',
     'slope-only': 'They change like a slope: the ends differ, a line between would be arbitrary.',
     'stripes-evened': 'Stripes of the sensor were evened out first.',
+    'stands-out': 'All of it is alike but for a small part that stands out by several deviations, and these zones show it.',
+    'stands-out-apart': 'All of it is alike but for a small part that stands out by several deviations; no number of zones shows it.',
     'one-layer': 'Only one measured layer speaks.',
     'no-measured-layer': 'No layer measured on the vines or in the soil was chosen.',
     'too-small': 'Under one hectare the block is too small to judge from layers alone.',

@@ -53,6 +53,8 @@ export const es = {
     plateaus: 'Muestran mesetas con escalones, no solo una pendiente.',
     'slope-only': 'Cambian como una pendiente: los extremos difieren, una línea sería arbitraria.',
     'stripes-evened': 'Antes se igualaron las bandas del sensor.',
+    'stands-out': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas, y estas zonas la muestran.',
+    'stands-out-apart': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas; ningún número de zonas la muestra.',
     'one-layer': 'Solo habla una capa medida.',
     'no-measured-layer': 'No se eligió ninguna capa medida en cepas o suelo.',
     'too-small': 'Por debajo de una hectárea la parcela es demasiado pequeña para juzgar solo por capas.',

@@ -53,6 +53,8 @@ export const fr = {
     plateaus: 'Elles montrent des paliers et des marches, pas seulement une pente.',
     'slope-only': 'Elles changent comme une pente : les bouts diffèrent, une ligne serait arbitraire.',
     'stripes-evened': 'Les bandes du capteur ont d’abord été lissées.',
+    'stands-out': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types, et ces zones la montrent.',
+    'stands-out-apart': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types ; aucun nombre de zones ne la montre.',
     'one-layer': 'Une seule couche mesurée parle.',
     'no-measured-layer': 'Aucune couche mesurée sur les ceps ou dans le sol n’a été choisie.',
     'too-small': 'Sous un hectare, la parcelle est trop petite pour juger sur les couches seules.',

@@ -53,6 +53,8 @@ export const it = {
     plateaus: 'Mostrano ripiani con gradini, non solo una pendenza.',
     'slope-only': 'Cambiano come una pendenza: gli estremi differiscono, una linea sarebbe arbitraria.',
     'stripes-evened': 'Prima sono state appianate le strisce del sensore.',
+    'stands-out': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard, e queste zone la mostrano.',
+    'stands-out-apart': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard; nessun numero di zone la mostra.',
     'one-layer': 'Parla un solo strato misurato.',
     'no-measured-layer': 'Non è stato scelto alcuno strato misurato su ceppi o suolo.',
     'too-small': 'Sotto un ettaro l’appezzamento è troppo piccolo per giudicare dai soli strati.',

@@ -22,10 +22,12 @@ const lossy = 'it changes pixel values to save space';
 const picture = 'it is meant for pictures, not for measured values';
 
 const inflate: Unpack = (raw, size) => {
-  // The exact chunk size avoids pieces and their joining; the cap stops a stream that unpacks to far more than its tile.
-  // A sync flush at the end gives what there is of a stream cut short; the caller compares the length.
-  const out = inflateSync(raw, { chunkSize: Math.max(64, size), maxOutputLength: size + PADDING, finishFlush: constants.Z_SYNC_FLUSH });
-  return owned(out.length > size ? out.subarray(0, size) : out);
+  // One piece, a byte longer than the tile: a piece that comes out full is followed by another of its size. The cap stops a
+  // stream that unpacks to far more than its tile. A sync flush at the end gives what there is of a stream cut short; the
+  // caller compares the length.
+  const out = inflateSync(raw, { chunkSize: Math.max(64, size + 1), maxOutputLength: size + PADDING, finishFlush: constants.Z_SYNC_FLUSH });
+  const bytes = out.length > size ? out.subarray(0, size) : out;
+  return bytes.byteOffset === 0 ? (bytes as Uint8Array<ArrayBuffer>) : new Uint8Array(bytes);
 };
 
 /** TIFF compression numbers and what becomes of them. */
@@ -60,7 +62,7 @@ async function prepareZstd(): Promise<Unpack> {
   };
 }
 
-/** A view that starts at the beginning of its own buffer, so that typed arrays can be laid over it. */
+/** Bytes in a buffer of their own, so that typed arrays can be laid over it from its beginning. */
 function owned(bytes: Uint8Array): Uint8Array<ArrayBuffer> {
   if (bytes.byteOffset === 0 && bytes.buffer instanceof ArrayBuffer && bytes.byteLength === bytes.buffer.byteLength) return bytes as Uint8Array<ArrayBuffer>;
   return new Uint8Array(bytes);

@@ -7,5 +7,5 @@ export function foreignKind(name: string): 'is-picture' | 'is-document' | 'is-pr
   if (/program|script/.test(name)) return 'is-program';
   if (/archive/.test(name)) return 'is-archive';
   if (/web page/.test(name)) return 'is-page';
-  return /HDF5|NetCDF|GRIB|FlatGeobuf|Parquet|Arrow|point cloud|grid|MapInfo|DXF|geodatabase/.test(name) ? 'is-other-map' : 'is-unknown';
+  return /HDF5|NetCDF|GRIB|FlatGeobuf|Parquet|Arrow|point cloud|grid|MapInfo|DXF|GML|OpenStreetMap|geodatabase/.test(name) ? 'is-other-map' : 'is-unknown';
 }

@@ -48,6 +48,8 @@ export async function understandAgain(input: string | Uint8Array, options: Raste
 const sideFiles: readonly (readonly [RegExp, fact: string, remedy: string, why: string])[] = [
   [/\.ovr$/i, 'It is an overview beside a picture.', 'The picture alone is enough.', 'is-overview'],
   [/\.aux(\.xml)?$/i, 'It is a file of statistics beside a picture.', 'The picture alone is enough; if its place or reference system stands only here, send both together.', 'is-auxiliary'],
+  [/\.(tfw|tifw|tiffw|wld|jgw|pgw)$/i, 'It is a world file, which says where a picture lies, without the picture.', 'Send both together, with the same name.', 'is-world-file'],
+  [/\.prj$/i, 'It is a projection file (.prj), which names a reference system, without its layer.', 'Send it together with the shapefile or the picture of the same name.', 'is-projection'],
   [/\.msk$/i, 'It is the mask of a picture, without the picture.', 'Send both together, with the same name.', 'is-mask'],
 ];
 

@@ -22,6 +22,8 @@ const foreign: readonly (readonly [bytes: readonly number[], name: string])[] = 
   [[0x37, 0x7a, 0xbc, 0xaf], 'a 7z archive'],
   [[0x52, 0x61, 0x72, 0x21], 'a RAR archive'],
   [[0xfd, 0x37, 0x7a, 0x58], 'an xz archive'],
+  [[0x42, 0x5a, 0x68], 'a bzip2 archive'],
+  [[0x28, 0xb5, 0x2f, 0xfd], 'a Zstandard archive'],
   [[0x89, 0x48, 0x44, 0x46], 'an HDF5 file'],
   [[0x43, 0x44, 0x46], 'a NetCDF file'],
   [[0x00, 0x00, 0x00, 0x0c, 0x6a, 0x50], 'a JPEG 2000 picture'],
@@ -48,32 +50,48 @@ const foreignTexts: readonly (readonly [RegExp, string])[] = [
   [/^\{\\rtf/, 'a text document (RTF)'],
 ];
 
+/** XML of maps that no reader here takes. */
+const foreignXml: readonly (readonly [RegExp, string])[] = [
+  [/<osm[\s>]/i, 'a map of OpenStreetMap (.osm)'],
+  [/<\w+:FeatureCollection[\s>]|xmlns:gml=/i, 'a GML file'],
+];
+
+const misnamed: Sniffed = { format: 'foreign', foreignName: 'a file whose beginning is damaged, or of another kind than its name says' };
+
 /** `first` should hold the first 4096 bytes (fewer when the file is shorter). */
 export function sniffFormat(first: Uint8Array, name: string): Sniffed {
   if (first.length === 0) return found('empty');
   const is = (bytes: readonly number[], at = 0): boolean => bytes.every((byte, i) => first[at + i] === byte);
   if (is([0x49, 0x49, 42, 0]) || is([0x4d, 0x4d, 0, 42]) || is([0x49, 0x49, 43, 0]) || is([0x4d, 0x4d, 0, 43])) return found('geotiff');
   if (is([0x50, 0x4b, 3, 4]) || is([0x50, 0x4b, 5, 6])) return found('zip');
-  if (is([...'SQLite format 3'].map((letter) => letter.charCodeAt(0)))) return found('geopackage');
+  if (is(letters('SQLite format 3'))) return found('geopackage');
   if (is([0, 0, 0x27, 0x0a]) || (/\.(dbf|shx|sbn|sbx|cpg|qpj)$/i.test(name) && first[0] !== 0x50)) return found('shapefile-part');
   const other = foreign.find(([bytes]) => is(bytes));
   if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
+  if (is(letters('ustar'), 257)) return { format: 'foreign', foreignName: 'a tar archive' };
+  if (is(letters('ftyp'), 4)) return { format: 'foreign', foreignName: 'a HEIC picture or a film' };
   return sniffText(first, name);
 }
+
+const letters = (text: string): number[] => [...text].map((letter) => letter.charCodeAt(0));
 
 function sniffText(first: Uint8Array, name: string): Sniffed {
   if (first[0] === 0xff && first[1] === 0xfe && first[2] === 0 && first[3] === 0) return { format: 'foreign', foreignName: 'a text in UTF-32 letters; save it as UTF-8' };
   const wide = (first[0] === 0xff && first[1] === 0xfe) || (first[0] === 0xfe && first[1] === 0xff) || first.subarray(0, 200).filter((byte) => byte === 0).length > Math.min(first.length, 200) / 3;
   const text = (wide ? String.fromCharCode(...first.filter((byte) => byte !== 0 && byte < 0xfe)) : new TextDecoder().decode(first)).replace(/^\uFEFF/, '').trimStart();
-  if (/\.(tiff?|zip|kmz|gpkg|shp)$/i.test(name) && hasControls(first.subarray(0, 500))) return { format: 'foreign', foreignName: 'a file whose beginning is damaged, or of another kind than its name says' };
+  if (/\.(tiff?|zip|kmz|gpkg|shp)$/i.test(name) && hasControls(first.subarray(0, 500))) return misnamed;
   if (!wide && isBinary(first.subarray(0, 2000))) return { format: 'foreign', foreignName: 'a binary file of an unknown kind' };
   const other = foreignTexts.find(([beginning]) => beginning.test(text));
   if (other !== undefined) return { format: 'foreign', foreignName: other[1] };
-  if (/^<\?xml|^<kml|^<gpx|^<!--/i.test(text)) return found(/<kml[\s>]/i.test(text) ? 'kml' : /<gpx[\s>]/i.test(text) ? 'gpx' : 'xml');
+  if (/^<\?xml|^<kml|^<gpx|^<osm|^<!--/i.test(text)) {
+    const map = foreignXml.find(([root]) => root.test(text));
+    return map === undefined ? found(/<kml[\s>]/i.test(text) ? 'kml' : /<gpx[\s>]/i.test(text) ? 'gpx' : 'xml') : { format: 'foreign', foreignName: map[1] };
+  }
   if (/^<!doctype html|^<html|^<head/i.test(text)) return { format: 'foreign', foreignName: 'a web page' };
   // A record separator opens each line of a GeoJSON text sequence (RFC 8142).
   if (/^[{[]/.test(text.startsWith('\u001e') ? text.slice(1).trimStart() : text)) return found('geojson');
   if (/^(PROJCS|GEOGCS|PROJCRS)\[/.test(text)) return { format: 'foreign', foreignName: 'a projection file (.prj) without its layer' };
+  if (/\.(geojsonl?|json|kml|gpx)$/i.test(name)) return misnamed;
   return /\.(csv|tsv|txt|tab|asc|xyz)$/i.test(name) || /[,;\t|]/.test(text.split(/\r?\n/)[0] ?? '') ? found('table') : { format: 'foreign', foreignName: 'a text of an unknown kind' };
 }
 

@@ -15,6 +15,7 @@ import { cellNumber, findDecimalMark, type DecimalMark } from '../../../shared/i
 import { collectColumns } from './collectColumns.ts';
 import { parseTable, type ParsedTable } from './parseTable.ts';
 import { findPositionColumns, type PositionColumns } from '../../../shared/importing/positionColumns.ts';
+import { withWktPoints } from './wktPoints.ts';
 import { readPositions, type PositionReading } from './readPositions.ts';
 
 /** A table of points: conductivity readings, old samples. Rows without a usable position are set aside by reason. Throws ImportProblem. */
@@ -31,7 +32,8 @@ function decode(bytes: Uint8Array, fileName: string): DecodedText {
 }
 
 function understand({ text, encoding }: DecodedText, options: ReadOptions): PointsUnderstood {
-  const table = parseTable(text);
+  const table = withWktPoints(parseTable(text));
+  if (table.rows.length === 0) throw new ImportProblem({ code: 'empty', fact: 'It names its columns and has no rows below them.', remedy: 'Export the table again, with its readings.', params: { why: 'no-rows' } });
   const questions: ImportQuestion[] = [];
   const warnings: ImportWarning[] = [...table.warnings];
   if (encoding !== 'UTF-8') warnings.push({ code: 'encoding', text: `Its letters are read as ${encoding}. Check names with accents.`, params: { encoding } });

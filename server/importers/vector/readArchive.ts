@@ -3,7 +3,7 @@ import { isPackerRubbish, type ZipEntry } from '../archive/zipDirectory.ts';
 import { ImportProblem } from '../importProblem.ts';
 import { sniffFormat } from '../sniffFormat.ts';
 import { decodeText } from '../textEncoding.ts';
-import type { ImportQuestion } from '../understood.ts';
+import type { ImportQuestion, ImportWarning } from '../understood.ts';
 import type { LayersRead } from './rawLayer.ts';
 import { readText } from './readText.ts';
 
@@ -33,17 +33,22 @@ async function readShapefiles(archive: ZipArchive, names: readonly string[], wan
   const labels = distinctLabels(names);
   const at = labels.indexOf(wanted ?? '');
   const chosen = at < 0 ? names.map((_, each) => each) : [at];
-  return oneOf(chosen.map((each) => {
+  const reading = oneOf(chosen.map((each) => {
     const { layer, ...rest } = readShapefile(archive, names[each]!);
     return { layers: [{ ...layer, name: labels[each]! }], ...rest };
   }));
+  return archive.entries.some(({ name }) => isOtherLayer(name)) ? { ...reading, warnings: [...reading.warnings, onlyRead(chosen.slice(0, 3).map((each) => `${labels[each]!.slice(0, 60)}.shp`).join(', '))] } : reading;
 }
 
 async function readDatabase(archive: ZipArchive, entry: ZipEntry, { wanted, isAlone }: { wanted: string | undefined; isAlone: boolean }): Promise<LayersRead> {
   const { readGeoPackage } = await import('./readGeoPackage.ts');
   const reading = await readGeoPackage(archive.read(entry), wanted);
   const name = entry.name.split('/').pop()!.slice(0, 60);
-  return isAlone ? reading : { ...reading, warnings: [...reading.warnings, { code: 'other-files', text: `Of the files in the archive, only "${name}" is read.`, params: { name } }] };
+  return isAlone ? reading : { ...reading, warnings: [...reading.warnings, onlyRead(name)] };
+}
+
+function onlyRead(name: string): ImportWarning {
+  return { code: 'other-files', text: `Of the files in the archive, only "${name}" is read.`, params: { name } };
 }
 
 /** Files that hold no shapes, as the cover of a KMZ which only names its parts, do not count beside those that do. */

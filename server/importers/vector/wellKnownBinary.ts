@@ -1,7 +1,7 @@
 import type { Geometry, Position } from 'geojson';
 
 /**
- * Shapes as databases store them: well-known binary of OGC 06-103r4 with ISO type numbers, heights and measures left out.
+ * Shapes as databases store them: well-known binary of OGC 06-103r4 with ISO type numbers; measures are left out.
  * Curved kinds whose pieces are all straight are read as what they are. Throws RangeError where the bytes end too early or a
  * count cannot be; null for true curves, which have no straight corners.
  */
@@ -25,7 +25,7 @@ function geometryAt(cursor: Cursor): Geometry | null {
   cursor.at += 5;
   const [type, extra] = [code % 1000, Math.floor(code / 1000)];
   // 1000 heights, 2000 measures, 3000 both.
-  const shape = { isLittle, numbers: [2, 3, 3, 4][extra] ?? 0 };
+  const shape = { isLittle, numbers: [2, 3, 3, 4][extra] ?? 0, hasHeights: extra === 1 || extra === 3 };
   if (shape.numbers === 0 || (type > 3 && !(type in parts)) || type < 1) return null;
   if (type === 1) {
     const position = positionAt(cursor, shape);
@@ -40,6 +40,8 @@ interface Shape {
   isLittle: boolean;
   /** Numbers in a position. */
   numbers: number;
+  /** The third number is a height. */
+  hasHeights: boolean;
 }
 
 /** A count of things of at least `least` bytes each; one that the bytes cannot hold is a lie. */
@@ -54,8 +56,8 @@ function positionsAt(cursor: Cursor, shape: Shape): Position[] {
   return Array.from({ length: countAt(cursor, shape, 8 * shape.numbers) }, () => positionAt(cursor, shape));
 }
 
-function positionAt(cursor: Cursor, { isLittle, numbers }: Shape): Position {
-  const position = [cursor.view.getFloat64(cursor.at, isLittle), cursor.view.getFloat64(cursor.at + 8, isLittle)];
+function positionAt(cursor: Cursor, { isLittle, numbers, hasHeights }: Shape): Position {
+  const position = [cursor.view.getFloat64(cursor.at, isLittle), cursor.view.getFloat64(cursor.at + 8, isLittle), ...(hasHeights ? [cursor.view.getFloat64(cursor.at + 16, isLittle)] : [])];
   cursor.at += 8 * numbers;
   return position;
 }

@@ -23,6 +23,16 @@ const gathered = (): Uint8Array => {
   const plain = shape([squareLonLat], { srsId: 4326, envelope: 0, bigEndian: false });
   return Uint8Array.from([...plain.subarray(0, 8), 1, 7, 0, 0, 0, 1, 0, 0, 0, ...plain.subarray(8)]);
 };
+/** The square with a height at each corner. */
+const raised = (): Uint8Array => {
+  const numbers = squareLonLat.flatMap(([x, y]) => [x, y, 80]);
+  const bytes = new Uint8Array(8 + 13 + 8 * numbers.length);
+  const view = new DataView(bytes.buffer);
+  bytes.set([0x47, 0x50, 0, 1, 0xe6, 0x10, 0, 0, 1]);
+  [1003, 1, squareLonLat.length].forEach((word, at) => view.setUint32(9 + 4 * at, word, true));
+  numbers.forEach((value, at) => view.setFloat64(21 + 8 * at, value, true));
+  return bytes;
+};
 const only = (blob: () => Uint8Array) => made({ layers: [soil({ rows: [] })], then: (database) => database.run('insert into soil values (9, ?, null, null)', [blob()]) });
 
 export const databaseCases: readonly CorpusCase[] = [
@@ -31,6 +41,7 @@ export const databaseCases: readonly CorpusCase[] = [
   file('shapes without a box before them', made({ envelope: 0 }), accepted()),
   file('shapes with heights in their box', made({ envelope: 2 }), accepted()),
   file('big-endian shapes', made({ bigEndian: true }), accepted()),
+  file('corners with heights', only(raised), accepted('heights-dropped')),
   file('an empty shape beside a good one', made({ layers: [soil({ rows: [{ rings: [squareLonLat] }, { rings: null }] })] }), accepted('empty-shapes')),
   file('a name with quotes and a statement in it', made({ layers: [soil({ name: "so'il; drop table x" })] }), accepted()),
   file('in a ZIP', () => writeZip({ 'soil.gpkg': made()() }), accepted(), { fileName: 'soil.zip' }),

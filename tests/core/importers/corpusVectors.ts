@@ -99,6 +99,7 @@ const shapefileCases: CorpusCase[] = [
   zipped('a shapefile in a folder with packer rubbish', () => shapeZip({ folder: 'my soil/', more: { '__MACOSX/my soil/._soil.shp': 'x' } }), accepted()),
   zipped('in degrees', () => shapeZip({ prj: wgs84Prj, records: [[[...squareLonLat].reverse()]] }), accepted()),
   zipped('a hole and a second part', () => shapeZip({ records: [[squareXY, holeXY, otherXY]] }), accepted()),
+  zipped('a shapefile beside GeoJSON, which is not read', () => shapeZip({ more: { 'walk.geojson': '{"type":"FeatureCollection","features":[]}' } }), accepted('other-files')),
   zipped('polygons with heights', () => shapeZip({ kind: 15 }), accepted('heights-dropped')),
   zipped('polygons with measures', () => shapeZip({ kind: 25 }), accepted()),
   zipped('points instead of areas', () => shapeZip({ kind: 1, records: [[[[500010, 4950010]]]] }), accepted()),

@@ -27,6 +27,8 @@ export const weatherReading = z.object({
   problems: z.array(z.object({ code: z.string(), line: z.number().int().nullable(), cell: z.string() })),
   columns: z.array(z.object({ name: z.string(), as: z.string() })),
   units: z.enum(['metric', 'us']),
+  /** Lines that hold a day and no figure: left out. */
+  without: z.number().int(),
   /** Days that are kept already and would be replaced. */
   replaces: z.number().int(),
   kept: z.number().int(),

@@ -74,7 +74,7 @@ export function dateOrderOf(cells: readonly string[]): DateOrder | null {
 
 /** yyyy-mm-dd of a cell that begins with a date, or null when there is no such day. `dayIn('3/9/2026', 'dmy')` is 2026-09-03. */
 export function dayIn(cell: string, order: DateOrder): string | null {
-  const iso = /^(\d{4})[-/.](\d{1,2})[-/.](\d{1,2})(?!\d)/.exec(cell);
+  const iso = /^(\d{4})[-/.](\d{1,2})[-/.](\d{1,2})(?!\d)/.exec(cell) ?? /^(\d{4})(\d{2})(\d{2})$/.exec(cell);
   const typed = /^(\d{1,2})[-/.](\d{1,2})[-/.](\d{4}|\d{2})(?!\d)/.exec(cell);
   if (iso) return dayOf(Number(iso[1]), Number(iso[2]), Number(iso[3]));
   if (!typed) return null;

@@ -1,8 +1,10 @@
-import { columnNamed, dateOrderOf, dayIn, decimalMarkOf, numberIn, plainWords, readPastedTable, type DateOrder, type DecimalMark } from './pastedTable.ts';
+import { dateOrderOf, dayIn, decimalMarkOf, numberIn, plainWords, readPastedTable, type DateOrder, type DecimalMark, type PastedTable } from './pastedTable.ts';
+import { fromHead, unitsFound, weatherColumns, type ColumnsAt, type ColumnUse, type UnitsFound, type WeatherUnits } from './weatherColumns.ts';
 
 /**
  * Weather by day from a station's table. Columns are known by their names in five languages; degrees Fahrenheit and
- * inches by their marks in the head. All lines are right, or nothing is taken.
+ * inches by the mark of each column. Lines without a figure are days that nobody knows; all others are right, or
+ * nothing is taken.
  */
 export interface WeatherDay {
   readonly day: string;
@@ -24,7 +26,8 @@ export interface WeatherProblem {
 export interface WeatherAnswers {
   readonly dateOrder?: DateOrder | null;
   readonly decimalMark?: DecimalMark | null;
-  readonly units?: 'metric' | 'us' | null;
+  /** For columns whose head names no unit. */
+  readonly units?: WeatherUnits | null;
 }
 
 export interface ReadWeather {
@@ -33,27 +36,26 @@ export interface ReadWeather {
   readonly problems: readonly WeatherProblem[];
   /** What each column was taken for. */
   readonly columns: readonly { readonly name: string; readonly as: ColumnUse | 'leftOut' }[];
-  readonly units: 'metric' | 'us';
+  readonly units: WeatherUnits;
+  /** Lines that hold a day and no figure. */
+  readonly without: number;
 }
 
-type ColumnUse = 'day' | 'maxC' | 'minC' | 'rainMm';
-
-const words: Record<ColumnUse, readonly string[]> = {
-  day: ['day', 'date', 'fecha', 'dia', 'jour', 'data', 'giorno', 'datum'],
-  maxC: ['max', 'tmax', 'maximum', 'high', 'maxima', 'maximo', 'maximale', 'massima', 'tx'],
-  minC: ['min', 'tmin', 'minimum', 'low', 'minima', 'minimo', 'minimale', 'tn'],
-  rainMm: ['rain', 'rainfall', 'precipitation', 'prec', 'precip', 'lluvia', 'precipitacion', 'pluie', 'precipitations', 'pioggia', 'precipitazioni', 'chuva', 'precipitacao', 'rr'],
-};
 const mostDays = 4000;
 const hottestC = 60;
 const wettestMm = 2000;
+/** What stations write where they measured nothing. */
+const noFigure = /^(-+|\/+|\*+|n[./]?a\.?|nan|null|none|m|-99+(\.0+)?)$/i;
+/** Rain that wets the gauge and cannot be measured. */
+const trace = /^(t|tr|trace|traces|traza|tracce|tra[cç]os?)$/i;
 const mmPerInch = 25.4;
 
 export function readWeather(text: string, answers: WeatherAnswers = {}): ReadWeather {
-  const table = readPastedTable(text);
-  const at = Object.fromEntries((Object.keys(words) as ColumnUse[]).map((use) => [use, columnNamed(table.names, words[use])])) as Record<ColumnUse, number>;
+  const { table: found, above } = fromHead(text.replace(/^\uFEFF/, ''), readPastedTable);
+  const at = weatherColumns(found.names);
+  const table = withoutUnitLine(asFigures(found, at), at);
   const columns = table.names.map((name, index) => ({ name, as: (Object.keys(at) as ColumnUse[]).find((use) => at[use] === index) ?? ('leftOut' as const) }));
-  const whole = (code: WeatherProblemCode): ReadWeather => ({ days: [], questions: [], problems: [{ code, line: null, cell: '' }], columns, units: 'metric' });
+  const whole = (code: WeatherProblemCode): ReadWeather => ({ days: [], questions: [], problems: [{ code, line: null, cell: '' }], columns, units: 'metric', without: 0 });
   if (table.rows.length === 0) return whole('empty');
   if (table.rows.length > mostDays) return whole('tooMany');
   if (at.day < 0) return whole('noDayColumn');
@@ -62,35 +64,44 @@ export function readWeather(text: string, answers: WeatherAnswers = {}): ReadWea
 
   const cellsOf = (use: ColumnUse) => (at[use] < 0 ? [] : table.rows.flatMap(({ cells }) => (cells[at[use]] ? [cells[at[use]]!] : [])));
   const values = [...cellsOf('maxC'), ...cellsOf('minC'), ...cellsOf('rainMm')];
+  const filled = table.rows.filter(({ cells }) => (['maxC', 'minC', 'rainMm'] as const).some((use) => at[use] >= 0 && cells[at[use]]));
+  if (filled.length === 0) return whole('empty');
   const order = answers.dateOrder ?? dateOrderOf(cellsOf('day'));
   const mark = answers.decimalMark ?? decimalMarkOf(values);
-  const units = answers.units ?? unitsOf(table.names, at, mark === null ? [] : cellsOf('maxC').map((cell) => numberIn(cell, mark)));
-  const questions: WeatherQuestion[] = [...(order === null ? ['dateOrder' as const] : []), ...(mark === null ? ['decimalMark' as const] : []), ...(units === null ? ['units' as const] : [])];
-  const read = table.rows.map(({ line, cells }) => readLine({ line, cells, at, order: order ?? 'dmy', mark: mark ?? '.', units: units ?? 'metric' }));
+  const warmest = (use: ColumnUse) => (mark === null ? 0 : cellsOf(use).reduce((most, cell) => Math.max(most, numberIn(cell, mark) || 0), 0));
+  const units = unitsFound(table.names, at, { answer: answers.units ?? null, warmest: warmest('maxC'), warmestNight: warmest('minC') });
+  const unsure = units.temperature === null || units.rain === null;
+  const questions: WeatherQuestion[] = [...(order === null ? ['dateOrder' as const] : []), ...(mark === null ? ['decimalMark' as const] : []), ...(unsure ? ['units' as const] : [])];
+  const read = filled.map(({ line, cells }) => readLine({ line: line + above, cells, at, order: order ?? 'dmy', mark: mark ?? '.', units }));
   const problems = read.flatMap((each) => ('code' in each ? [each] : []));
   const days = read.flatMap((each) => ('code' in each ? [] : [each]));
   return {
     days: days.map(({ day, maxC, minC, rainMm }) => ({ day, maxC, minC, rainMm })), questions,
     // What is wrong depends on the answers.
-    problems: questions.length > 0 ? [] : [...problems, ...twice(days)], columns, units: units ?? 'metric',
+    problems: questions.length > 0 ? [] : [...problems, ...twice(days)], columns, units: units.temperature ?? 'metric', without: table.rows.length - filled.length,
   };
 }
 
-/** Null when the figures are too warm for °C and the head names no unit. */
-function unitsOf(names: readonly string[], at: Record<ColumnUse, number>, maxima: readonly number[]): 'metric' | 'us' | null {
-  const head = names.filter((_, index) => index === at.maxC || index === at.minC || index === at.rainMm).map(plainWords).join(' ');
-  if (/(^| |°)f( |$)|fahrenheit|(^| )(inch|inches|in)( |$)/.test(head)) return 'us';
-  if (/(^| |°)c( |$)|celsius|(^| )mm( |$)/.test(head)) return 'metric';
-  return maxima.some((value) => value > hottestC) ? null : 'metric';
+/** Marks of nothing become empty cells, a trace of rain 0. */
+function asFigures(table: PastedTable, at: ColumnsAt): PastedTable {
+  const figure = (cell: string, index: number) => (index === at.day ? cell : noFigure.test(cell) ? '' : index === at.rainMm && trace.test(cell) ? '0' : cell);
+  return { names: table.names, rows: table.rows.map(({ line, cells }) => ({ line, cells: cells.map(figure) })) };
+}
+
+/** A second line of the head that names the units belongs to the names above it. */
+function withoutUnitLine(table: PastedTable, at: ColumnsAt): PastedTable {
+  const [first, ...rows] = table.rows;
+  const isUnits = first !== undefined && !/\d/.test(first.cells[at.day] ?? '') && first.cells.some((cell) => /^(°? ?[cf]|mm|in|inch|inches|celsius|fahrenheit)$/i.test(plainWords(cell)));
+  return isUnits ? { names: table.names.map((name, index) => `${name} ${first.cells[index] ?? ''}`), rows } : table;
 }
 
 interface Line {
   line: number;
   cells: readonly string[];
-  at: Record<ColumnUse, number>;
+  at: ColumnsAt;
   order: DateOrder;
   mark: DecimalMark;
-  units: 'metric' | 'us';
+  units: UnitsFound;
 }
 
 function readLine({ line, cells, at, order, mark, units }: Line): (WeatherDay & { line: number }) | WeatherProblem {
@@ -101,10 +112,10 @@ function readLine({ line, cells, at, order, mark, units }: Line): (WeatherDay & 
   const wrong = (['maxC', 'minC', 'rainMm'] as const).find((use) => cellOf(use) !== '' && Number.isNaN(numberIn(cellOf(use), mark)));
   if (wrong) return problem('noNumber', cellOf(wrong));
   const value = (use: ColumnUse) => (cellOf(use) === '' ? null : numberIn(cellOf(use), mark));
-  const degrees = (shown: number | null) => (shown === null || units === 'metric' ? shown : round((shown - 32) / 1.8));
+  const degrees = (shown: number | null) => (shown === null || units.temperature !== 'us' ? shown : round((shown - 32) / 1.8));
   const [maxC, minC] = [degrees(value('maxC')), degrees(value('minC'))];
   const rain = value('rainMm');
-  const rainMm = rain === null || units === 'metric' ? rain : round(rain * mmPerInch);
+  const rainMm = rain === null || units.rain !== 'us' ? rain : round(rain * mmPerInch);
   if ((maxC === null) !== (minC === null)) return problem('halfTemperature', cellOf('day'));
   if (maxC === null && rainMm === null) return problem('noNumber', cellOf('day'));
   if (maxC !== null && minC !== null && minC > maxC) return problem('swapped', `${cellOf('minC')} / ${cellOf('maxC')}`);

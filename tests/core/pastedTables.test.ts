@@ -43,6 +43,40 @@ describe('a table of weather', () => {
   });
 });
 
+describe('a table of weather as stations write it', () => {
+  const first = (text: string, answers = {}) => readWeather(text, answers).days[0];
+
+  it('reads each column in its own unit, and asks where °F stands beside rain without one', () => {
+    expect(first('date,tmax (°F),tmin (°F),rain (mm)\n2026-09-13,86,59,12\n')).toEqual({ day: '2026-09-13', maxC: 30, minC: 15, rainMm: 12 });
+    expect(first('date,tmax (°C),tmin (°C),rain (in)\n2026-09-13,30,15,0.5\n')).toEqual({ day: '2026-09-13', maxC: 30, minC: 15, rainMm: 12.7 });
+    const bare = 'date,high °F,low °F,rain\n2026-09-13,86,59,0.5\n';
+    expect(readWeather(bare).questions).toEqual(['units']);
+    expect(first(bare, { units: 'metric' })!.rainMm).toBe(0.5);
+    expect(first(bare, { units: 'us' })!.rainMm).toBe(12.7);
+  });
+
+  it('asks of nights that no vineyard has in °C', () => {
+    expect(readWeather('date,max,min\n2026-09-13,49,41\n').questions).toEqual(['units']);
+  });
+
+  it('never takes wind or humidity for temperature', () => {
+    expect(first('date,max wind,humidity min,max temp,min temp\n2026-09-13,55,20,30,15\n')).toMatchObject({ maxC: 30, minC: 15 });
+    expect(readWeather('fecha;viento max;hum min\n13/09/2026;55;20\n').problems[0]!.code).toBe('noValueColumn');
+  });
+
+  it('finds the head below lines about the station, and units in a line of their own', () => {
+    const read = readWeather('Station;Marl Ridge\r\n\r\nDate;TX;TN;RR\r\n;°C;°C;mm\r\n20260901;30,1;15,2;0\r\n20260932;30,1;15,2;0\r\n');
+    expect(read.days).toEqual([{ day: '2026-09-01', maxC: 30.1, minC: 15.2, rainMm: 0 }]);
+    expect(read.problems).toEqual([{ code: 'noDay', line: 6, cell: '20260932' }]);
+  });
+
+  it('leaves days without a figure unknown, and keeps -9 °C', () => {
+    const read = readWeather('date,max,min,rain\n2026-01-01,-999,-999,-999\n2026-01-02,M,M,\n2026-01-03,1,-9,T\n');
+    expect(read).toMatchObject({ without: 2, problems: [], days: [{ day: '2026-01-03', maxC: 1, minC: -9, rainMm: 0 }] });
+    expect(readWeather('date,max,min\n2026-01-01,--,--\n').problems[0]!.code).toBe('empty');
+  });
+});
+
 describe('weather beside a visit', () => {
   const day = (date: string, maxC: number | null, minC: number | null, rainMm: number | null) => ({ day: date, maxC, minC, rainMm });
   const days = [day('2026-08-30', 41, 20, 30), day('2026-09-01', 30, 14, 4), day('2026-09-02', 36, 18, null), day('2026-09-03', 24, 12, 2)];

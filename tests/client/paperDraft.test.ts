@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { emptyDraft, paperBatch, retyped, vineOfLine, withOutcomes, type PaperDraft } from '../../src/components/field/paperDraft.ts';
+import { boxValue, emptyDraft, paperBatch, retyped, unreadBoxes, vineOfLine, withOutcomes, type PaperDraft } from '../../src/components/field/paperDraft.ts';
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
 
 const round = {
@@ -17,9 +17,18 @@ describe('a sheet that is typed', () => {
   });
 
   it('takes a decimal comma, marks the unusual and leaves out what is no number', () => {
-    expect(paperBatch(round, typed(emptyDraft(round), 't1', '12,5'), sheet).readings[0]!.value).toBe(12.5);
+    const weighed = { ...round, measures: [{ ...round.measures[0]!, decimals: 2 }] } as FieldRound;
+    expect(paperBatch(weighed, typed(emptyDraft(weighed), 't1', '12,5'), sheet).readings[0]!.value).toBe(12.5);
     expect(paperBatch(round, typed(emptyDraft(round), 't1', '400'), sheet).readings[0]!.flags).toEqual(['odd']);
     expect(paperBatch(round, typed(emptyDraft(round), 't1', 'many'), sheet).readings).toEqual([]);
+  });
+
+  it('neither saves nor forgets a count below zero or between two numbers, and counts the boxes that stay', () => {
+    expect([boxValue('-3', round.measures[0]!), boxValue('12,5', round.measures[0]!), boxValue('x', round.measures[0]!), boxValue('-3', { decimals: 1, minimum: -20 })]).toEqual([{ problem: 'negative' }, { problem: 'notWhole' }, { problem: 'noNumber' }, { value: -3 }]);
+    const draft = typed(typed(emptyDraft(round), 't1', '-3'), 't2', '12,5');
+    expect(paperBatch(round, draft, sheet).readings).toEqual([]);
+    expect(unreadBoxes(round, draft)).toBe(2);
+    expect(unreadBoxes(round, typed(draft, 't2', '12'))).toBe(1);
   });
 
   it('keeps the id of a box until it is saved, and corrects after that', () => {

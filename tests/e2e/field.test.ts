@@ -432,6 +432,8 @@ describe('a day of three phones without signal, one of which is lost', () => {
     expect(violations.filter(({ impact }) => impact === 'serious' || impact === 'critical').map(({ id }) => id)).toEqual([]);
     const { items } = await office.get<{ items: { action: string }[] }>('/audit');
     expect(items.map(({ action }) => action)).toContain('conflicts.settle');
+    await page.getByRole('button', { name: 'Take this answer back' }).first().click();
+    await page.getByText(`${open} conflicts to settle.`).waitFor();
   });
 
   it('a phone forgets what was received weeks ago, and never what was not', async () => {

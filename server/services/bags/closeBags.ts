@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import { newBag, type BagBatchAnswer, type BagOutcome, type NewBag } from '../../../shared/contracts/bags.ts';
 import type { Refusal } from '../../../shared/contracts/readings.ts';
+import { spellLabelCode } from '../../../shared/field/labelCode.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { strangeVine } from '../../ground/strangeVine.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
@@ -20,19 +21,19 @@ export async function closeBags(access: Access, input: { bags: unknown[] }, now:
     const parsed = input.bags.map(parseBag);
     const context = await loadBagContext(trx, access, parsed.flatMap(({ bag }) => bag ?? []));
     const outcomes: BagOutcome[] = [];
-    let stored = 0;
+    const stored: string[] = [];
     for (const { bag, outcome } of parsed) {
       if (!bag) {
         outcomes.push(outcome);
         continue;
       }
       const answer = repeatOutcome(bag, context) ?? refusalOf(bag, context) ?? (await store(trx, access, { bag, context }));
-      if (answer.fresh) stored++;
+      if (answer.fresh) stored.push(spellLabelCode(bag.code));
       outcomes.push(answer.outcome);
     }
-    if (stored > 0) {
+    if (stored.length > 0) {
       const clashes = outcomes.filter(({ state }) => state === 'conflict').length;
-      await writeAudit(trx, access, { action: 'bags.close', subjectType: 'bags', subjectId: outcomes[0]!.id || access.estateId, after: { count: stored, clashes } });
+      await writeAudit(trx, access, { action: 'bags.close', subjectType: 'bags', subjectId: outcomes[0]!.id || access.estateId, subjectName: stored.join(', ').slice(0, 200), after: { count: stored.length, clashes } });
     }
     return { outcomes: await withNames(trx, access, outcomes, context), serverTime: now.toISOString() };
   });

@@ -1,6 +1,6 @@
 import type { NewReading, ReadingOutcome, VineFinding } from '../../../shared/contracts/readings.ts';
 import type { VineState } from '../../../shared/contracts/rows.ts';
-import type { FieldRound, WalkStop } from '../../../shared/contracts/rounds.ts';
+import type { FieldMeasure, FieldRound, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { isOdd } from '../../../shared/field/valueEntry.ts';
 import { askedAt } from '../../../shared/field/walkState.ts';
 import { newId } from '../../lib/newId.ts';
@@ -56,6 +56,20 @@ export function vineOfLine(stop: WalkStop, { states }: PaperLine): { rowId: stri
   return stop.reserve === null || states[1] !== '' ? null : { ...stop.reserve, isReserve: true };
 }
 
+/** What a box holds: nothing, a value, or why it is none of this measure. */
+export function boxValue(text: string, { decimals, minimum }: Pick<FieldMeasure, 'decimals' | 'minimum'>): { value: number | null } | { problem: 'noNumber' | 'negative' | 'notWhole' } {
+  const value = readNumber(text);
+  if (value === null) return { value };
+  if (Number.isNaN(value)) return { problem: 'noNumber' };
+  if (value < 0 && minimum >= 0) return { problem: 'negative' };
+  return decimals === 0 && !Number.isInteger(value) ? { problem: 'notWhole' } : { value };
+}
+
+/** Boxes of which nothing can be saved as they stand. */
+export function unreadBoxes(round: FieldRound, draft: PaperDraft): number {
+  return round.stops.flatMap((stop) => askedAt(round, stop).filter((measure) => 'problem' in boxValue(draft[stop.targetId]?.cells[measure.code]?.text ?? '', measure))).length;
+}
+
 /** Value that the phone had sent of a line, when there is one. */
 export function fromPhone(round: FieldRound, targetId: string, code: string): number | null {
   return round.received.find((reading) => reading.targetId === targetId && reading.measureCode === code)?.value ?? null;
@@ -69,9 +83,10 @@ export function paperBatch(round: FieldRound, draft: PaperDraft, sheet: { person
   const readings = round.stops.flatMap((stop) => askedAt(round, stop).flatMap((measure): SentReading[] => {
     const line = draft[stop.targetId];
     const cell = line?.cells[measure.code];
-    const value = readNumber(cell?.text ?? '');
+    const read = boxValue(cell?.text ?? '', measure);
     const vine = line ? vineOfLine(stop, line) : null;
-    if (!cell || !vine || value === null || Number.isNaN(value) || (cell.outcome !== null && cell.outcome.state !== 'refused')) return [];
+    if (!cell || !vine || 'problem' in read || read.value === null || (cell.outcome !== null && cell.outcome.state !== 'refused')) return [];
+    const { value } = read;
     const flags = [...(isOdd(value, measure) ? (['odd'] as const) : []), ...(vine.isReserve ? (['reserve'] as const) : [])];
     return [{
       id: cell.id, ...head, targetId: stop.targetId, rowId: vine.rowId, ordinal: vine.ordinal, measureCode: measure.code, value, unit: measure.unit, valueTyped: cell.text, takenAt: sheet.takenAt,

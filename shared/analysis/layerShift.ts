@@ -43,7 +43,9 @@ export function layerLikeness(grid: Grid, first: Cells, second: Cells): LayerLik
   };
   const east = bestEast + fine(at(bestEast - 1, bestSouth), at(bestEast + 1, bestSouth));
   const south = bestSouth + fine(at(bestEast, bestSouth - 1), at(bestEast, bestSouth + 1));
-  const isBelieved = best >= leastCorrelation && 1 - best * best < leftOver * (1 - correlation * correlation) && Math.hypot(east, south) >= leastShiftCells;
+  // Where likeness still grows at the edge of the search, two slopes lie beside each other and no place is the best.
+  const isPeak = Math.abs(bestEast) < farthestCells && Math.abs(bestSouth) < farthestCells;
+  const isBelieved = isPeak && best >= leastCorrelation && 1 - best * best < leftOver * (1 - correlation * correlation) && Math.hypot(east, south) >= leastShiftCells;
   // The second is looked up east and south of the first: it must come back by as much.
   return { correlation, shift: isBelieved ? { eastM: 0 - east * grid.cellSizeM, northM: south * grid.cellSizeM } : { eastM: 0, northM: 0 } };
 }

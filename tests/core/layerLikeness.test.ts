@@ -41,6 +41,16 @@ describe('two layers of a block', () => {
     expect(found.shift).toEqual({ eastM: 0, northM: 0 });
   });
 
+  it('have no shift when they are hills of their own, and likeness grows to the edge of the search', () => {
+    const hill = (east: number, south: number, seed: number) => {
+      const own = seededRandom(seed);
+      return Float32Array.from({ length: grid.cols * grid.rows }, (_, cell) => (grid.inside[cell] === 1 ? Math.exp(-(((cell % grid.cols) * 2 - east) ** 2 + (Math.floor(cell / grid.cols) * 2 - south) ** 2) / (2 * 40 ** 2)) + 0.03 * randomNormal(own) : NaN));
+    };
+    const { correlation, shift } = layerLikeness(grid, hill(50, 60, 4), hill(90, 60, 5))!;
+    expect(correlation).toBeLessThan(0.5);
+    expect(shift).toEqual({ eastM: 0, northM: 0 });
+  });
+
   it('are not compared where one is level or they hardly meet', () => {
     expect(layerLikeness(grid, layer(), new Float32Array(grid.cols * grid.rows).fill(5))).toBeNull();
     expect(layerLikeness(grid, layer(), new Float32Array(grid.cols * grid.rows).fill(NaN))).toBeNull();

@@ -71,6 +71,16 @@ describe('ledger', () => {
     expect(wrapper.emitted('update:chosen')).toEqual([['z3']]);
   });
 
+  it('a press on the name opens the line; where the chosen line unfolds it chooses', async () => {
+    wrapper = await ledger();
+    await wrapper.find('tr[data-key=z2] .ledger-name').trigger('click');
+    expect([wrapper.emitted('open'), wrapper.emitted('update:chosen')]).toEqual([[[zones[1]]], undefined]);
+    wrapper.unmount();
+    wrapper = await mountWithTexts(LedgerTable, { props: { caption: 'Zones', lines: zones, lineKey: (zone: Zone) => zone.id, columns, opens: true } as never, slots: { under: 'more of it' } });
+    await wrapper.find('tr[data-key=z2] .ledger-name').trigger('click');
+    expect([wrapper.emitted('open'), wrapper.emitted('update:chosen')]).toEqual([undefined, [['z2']]]);
+  });
+
   it('a head sorts up, down and back; lines without a value stay last both ways', async () => {
     wrapper = await ledger({ 'onUpdate:sort': (sort: unknown) => wrapper.setProps({ sort } as never) });
     const head = () => wrapper.findAll('thead button')[1]!;

@@ -34,6 +34,8 @@ export interface BlockZoneMaths {
   readonly finiteShare: number;
   /** Degrees of freedom of a pilot's spread; null where n − 1 hold. */
   readonly pilotDf: number | null;
+  /** How many fewer these are than the pilot's own, because its spreads decide the shares too. */
+  readonly pilotDfLost: number;
 }
 
 export interface Sharing {
@@ -60,6 +62,7 @@ export function blockMaths(question: PlanQuestion, counts: PlanCounts, code: str
   return {
     zones: question.zones.map(({ zone, vines }, i) => ({
       zone, weight: vines / all, spread: zones[i]!.sd, n: taken[i]!, vines, finiteShare: zones[i]!.finiteShare ?? 1, pilotDf: zones[i]!.spreadDf,
+      pilotDfLost: zones[i]!.spreadDf === null ? 0 : (measure.pilots?.[i]?.df ?? 0) - zones[i]!.spreadDf!,
       spreadMean: inUnits && measure.spreads[i]!.kind === 'cv' ? Math.abs(measure.expectedMeans[i]!) : null,
     })),
     variance, df, t: criticalT(measure.confidence, df), halfWidth,

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { planForBudget, spent, type Budget } from '../../shared/sampling/budget.ts';
 import { bestDivision, mergedSpread, partMeans, type LocatedReading } from '../../shared/sampling/divideZone.ts';
+import { blockMaths } from '../../shared/sampling/blockMaths.ts';
 import { adviseImpractical } from '../../shared/sampling/impractical.ts';
 import type { Spread } from '../../shared/sampling/margins.ts';
 import { planCounts } from '../../shared/sampling/planCounts.ts';
@@ -147,6 +148,21 @@ describe('a budget instead of margins', () => {
     const alone = planCounts({ ...QUESTION, question: 'block', measures: [{ ...BRIX, finiteShares: [0, 0, 0] }], zones: QUESTION.zones.map(({ zone }, i) => ({ zone, vines: i === 0 ? 1 : 300 })) });
     expect(alone.measures[0]!.reached).toBe(false);
     expect(alone.measures[0]!.blockHalfWidth).toBeNaN();
+  });
+});
+
+describe('degrees of freedom of a pilot', () => {
+  const pilots = [10, 12, 8].map((n) => ({ n, df: n - 1, spread: 1, mean: 22 }));
+  const dfsOf = (zones: number, method: 'leastCost' | 'equal') => {
+    const question: PlanQuestion = { ...QUESTION, zones: QUESTION.zones.slice(0, zones), question: 'block', method, measures: [{ ...BRIX, spreads: BRIX.spreads.slice(0, zones), expectedMeans: BRIX.expectedMeans.slice(0, zones), pilots: pilots.slice(0, zones) }] };
+    return blockMaths(question, planCounts(question), BRIX.code)!.zones.map(({ pilotDf, pilotDfLost }) => [pilotDf, pilotDfLost]);
+  };
+
+  it('are one fewer a zone only where the spreads share the samples out, and the working says so', () => {
+    expect(dfsOf(3, 'leastCost')).toEqual([[8, 1], [10, 1], [6, 1]]);
+    expect(dfsOf(3, 'equal')).toEqual([[9, 0], [11, 0], [7, 0]]);
+    // A lone zone has nothing to share.
+    expect(dfsOf(1, 'leastCost')).toEqual([[9, 0]]);
   });
 });
 

@@ -1,6 +1,7 @@
 import { parseArgs } from 'node:util';
 import { INDICES, type BandName, type IndexId } from '../../shared/analysis/indices.ts';
 import type { ImportPurpose } from '../../shared/contracts/imports.ts';
+import { helpText, MORE } from './zoneHelp.ts';
 
 /**
  * The command line of zoning, checked and typed before any file is touched.
@@ -41,9 +42,6 @@ export interface ZoneArguments {
   readonly reportPath: string | null;
 }
 
-export const usage =
-  'zone --block FILE --layer TYPE=FILE[#option=value,…] [--layer …] (points: #value=COLUMN,surface=distance|kriging) [--readings FILE] [--zones advise|1…6] [--layer-weights advise|equal] [--cell METRES] [--min-patch-ha HA] [--smooth METRES] [--standardise plain|robust] [--components] [--seed N] --out FILE [--report FILE]';
-
 const layerKinds: Record<string, Pick<LayerArgument, 'type' | 'purpose' | 'terrain'>> = {
   vigour: { type: 'vigour', purpose: 'vigour', terrain: null },
   conductivity: { type: 'conductivity', purpose: 'conductivity', terrain: null },
@@ -74,12 +72,17 @@ const argumentOptions = {
   report: { type: 'string' },
 } as const;
 
+/** The text to print instead of zoning, where it is asked for. */
+export function helpAskedFor(args: readonly string[]): string | null {
+  return args.some((arg) => arg === '--help' || arg === '-h') ? helpText({ layers: Object.keys(layerKinds), indices: Object.keys(INDICES) }) : null;
+}
+
 /** Throws BadInput naming the option, its value and what it may be. */
 export function readArguments(args: readonly string[]): ZoneArguments {
   const values = parsed(args);
   const layers = (values.layer ?? []).map(readLayer);
-  if (values.block === undefined) throw new BadInput(`--block is missing. Use: ${usage}`);
-  if (values.out === undefined) throw new BadInput(`--out is missing. Use: ${usage}`);
+  if (values.block === undefined) throw new BadInput(`--block is missing. ${MORE}`);
+  if (values.out === undefined) throw new BadInput(`--out is missing. ${MORE}`);
   if (layers.length === 0) throw new BadInput('--layer is missing; give at least one, such as --layer vigour=ndvi.tif.');
   return {
     blockPath: values.block,
@@ -102,17 +105,18 @@ function parsed(args: readonly string[]) {
   try {
     return parseArgs({ args: [...args], options: argumentOptions, allowPositionals: false }).values;
   } catch (error) {
-    if (error instanceof TypeError) throw new BadInput(`${error.message.split('\n')[0]!} Use: ${usage}`, { cause: error });
+    if (error instanceof TypeError) throw new BadInput(`${error.message.split('\n')[0]!.replace(/\.?$/, '.')} ${MORE}`, { cause: error });
     throw error;
   }
 }
 
 function readLayer(text: string): Omit<LayerArgument, 'id'> & { name: string } {
   const equals = text.indexOf('=');
-  const name = text.slice(0, Math.max(0, equals));
+  if (equals < 1) throw new BadInput(`--layer ${text}: give type and file, as in vigour=ndvi.tif.`);
+  const name = text.slice(0, equals);
   const index = name in INDICES ? (name as IndexId) : null;
   const kind = index === null ? layerKinds[name] : layerKinds.vigour;
-  if (equals < 1 || kind === undefined) {
+  if (kind === undefined) {
     throw new BadInput(`--layer ${text}: "${name}" is no layer type; use one of ${[...Object.keys(layerKinds), ...Object.keys(INDICES)].join(', ')}, as in vigour=ndvi.tif.`);
   }
   const [path, optionText] = splitOptions(text.slice(equals + 1));
@@ -121,6 +125,8 @@ function readLayer(text: string): Omit<LayerArgument, 'id'> & { name: string } {
   const bands = Object.fromEntries(Object.entries(options).flatMap(([key, value]) => (key in bandNames ? [[bandNames[key]!, wholeNumber(`--layer ${text}: ${key}`, value, { least: 1, most: 1024, or: '' })]] : [])));
   const hasBands = Object.keys(bands).length > 0;
   if (hasBands && kind.purpose !== 'vigour') throw new BadInput(`--layer ${text}: bands make a vegetation index; for ${name} give band=1.`);
+  const [first, second] = Object.keys(bands).filter((each) => Object.values(bands).filter((band) => band === bands[each as BandName]).length > 1);
+  if (first !== undefined) throw new BadInput(`--layer ${text}: ${first} and ${second} cannot be the same band of the picture.`);
   return { name, ...kind, index: hasBands ? (index ?? 'ndvi') : null, path, bands, options };
 }
 

@@ -1,14 +1,14 @@
-import { existsSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
-import { dirname, resolve } from 'node:path';
+import { renameSync, rmSync, writeFileSync } from 'node:fs';
 import { AnalysisError } from '../../shared/analysis/analysisError.ts';
 import { finishZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
 import type { ZoningInput, ZoningResult } from '../../shared/analysis/zoningTypes.ts';
 import { ImportProblem } from '../importers/importProblem.ts';
 import type { SecondThread } from '../workers/secondThread.ts';
-import { BadInput, readArguments, type ZoneArguments } from './zoneArguments.ts';
+import { BadInput, helpAskedFor, readArguments, type ZoneArguments } from './zoneArguments.ts';
 import { doBeside, type BesideDone, type BesideTasks } from './zoneBeside.ts';
 import { readBlock } from './zoneFiles.ts';
 import { openBeside, readInputs } from './zoneInputs.ts';
+import { requireResultPaths } from './zonePaths.ts';
 import { zonesGeoJson, zoningReport } from './zoneReport.ts';
 
 /**
@@ -18,12 +18,14 @@ import { zonesGeoJson, zoningReport } from './zoneReport.ts';
 
 export interface CommandOutcome {
   readonly exitCode: 0 | 1 | 2;
-  /** One line for standard output when done, for standard error otherwise. */
+  /** For standard output when done, for standard error otherwise; one line, or the help that was asked for. */
   readonly line: string;
 }
 
 /** Runs the command to its end; never throws. */
 export async function runZoneCommand(args: readonly string[]): Promise<CommandOutcome> {
+  const help = helpAskedFor(args);
+  if (help !== null) return { exitCode: 0, line: help };
   try {
     return { exitCode: 0, line: await run(args, createStopwatch()) };
   } catch (error) {
@@ -35,7 +37,7 @@ export async function runZoneCommand(args: readonly string[]): Promise<CommandOu
 
 async function run(args: readonly string[], stopwatch: Stopwatch): Promise<string> {
   const asked = readArguments(args);
-  for (const path of [asked.outPath, asked.reportPath]) requireFolder(path);
+  requireResultPaths(asked);
   const beside = openBeside(asked);
   try {
     return await zoneFiles(asked, beside, stopwatch);
@@ -76,12 +78,6 @@ async function zoneInTwo(input: ZoningInput, beside: SecondThread | null, mark: 
   mark('waiting for evidence');
   const result = finishZoning(ground, { made, edges: (here.edges ?? there?.edges)!, evidence: (here.evidence ?? there?.evidence)! }, mark);
   return { result, seconds: there?.seconds ?? {} };
-}
-
-function requireFolder(path: string | null): void {
-  if (path === null) return;
-  const folder = dirname(resolve(path));
-  if (!existsSync(folder) || !statSync(folder).isDirectory()) throw new BadInput(`The folder ${folder} does not exist; make it first or write elsewhere.`);
 }
 
 /** All files or none: written beside their places first, then moved. */

@@ -121,9 +121,13 @@ const surfaces = ['distance', 'kriging'] as const;
  */
 async function spread(grid: Grid, { lonLat, value }: { lonLat: readonly LonLat[]; value: Float64Array }, argument: LayerArgument): Promise<Values> {
   const factor = factorOf(argument);
-  const { min, max } = layerType(argument.type);
+  const { min, max, unit } = layerType(argument.type);
   const limits = { min: min === null ? null : min / factor, max: max === null ? null : max / factor };
   const { kept, setAside } = cleanPoints({ ...toUtmNear(lonLat, grid.epsg), value }, limits);
+  const impossible = setAside.find(({ reason }) => reason === 'impossible')!.count;
+  if (2 * impossible > value.length) {
+    throw new BadInput(`${argument.path}: ${impossible} of its ${value.length} values for layer "${argument.id}" lie outside ${min ?? 'any'} to ${max ?? 'any'}${unit === '' ? '' : ` ${unit}`}; check the column and its unit (#unit=).`);
+  }
   const { surface = 'distance' } = argument.options;
   if (!surfaces.some((known) => known === surface)) throw new BadInput(`--layer ${argument.id}: surface=${surface} cannot be used; give ${surfaces.join(' or ')}.`);
   const cells = surface === 'kriging' ? (await import('../../shared/analysis/surveySurface.ts')).surveySurface(grid, kept).cells : inverseDistance(grid, kept);

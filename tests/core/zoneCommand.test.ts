@@ -1,4 +1,4 @@
-import { existsSync, mkdtempSync, readFileSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
+import { existsSync, mkdirSync, mkdtempSync, readFileSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import type { FeatureCollection, MultiPolygon } from 'geojson';
@@ -90,8 +90,14 @@ describe('the zoning command', () => {
     ['a picture that lies elsewhere', ['--block', 'far.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--out', 'x.geojson'], /does not cover the block: it lies .* km away/],
     ['an outline that crosses itself', ['--block', 'bow.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--out', 'x.geojson'], /cross/],
     ['a folder that is not there', [...usual, '--out', 'nowhere/x.geojson'], /nowhere does not exist/],
+    ['a result that is a folder', [...usual, '--out', 'folder.geojson'], /folder\.geojson is a folder/],
+    ['a result in place of what was given', [...usual, '--out', 'block.geojson'], /--out would write over the file given with --block/],
+    ['a report in place of a layer', [...usual, '--out', 'x.geojson', '--report', 'dem.tif'], /--report would write over the file given with --layer elevation/],
+    ['one file for both results', [...usual, '--out', 'x.geojson', '--report', 'x.geojson'], /name the same file/],
+    ['a survey in another unit than it says', ['--block', 'block.geojson', '--layer', 'conductivity=ec.csv#value=ec_deep_mS_m,unit=dS/m', '--out', 'x.geojson'], /values for layer "conductivity" lie outside 0 to 2000 mS\/m; check the column and its unit/],
     ['seven zones', [...usual, '--zones', '7', '--out', 'x.geojson'], /--zones 7 cannot be used/],
   ])('ends with one line and writes nothing for %s', async (_name, args, sentence) => {
+    mkdirSync(join(folder, 'folder.geojson'), { recursive: true });
     writeFileSync(join(folder, 'broken.tif'), 'II*\0 this is no picture');
     const square = (west: number, corners: number[][]) => JSON.stringify({ type: 'Polygon', coordinates: [corners.map(([x, y]) => [west + x! / 1000, 45 + y! / 1000])] });
     writeFileSync(join(folder, 'far.geojson'), square(9, [[0, 0], [2, 0], [2, 2], [0, 2], [0, 0]]));
@@ -103,6 +109,19 @@ describe('the zoning command', () => {
     expect(exitCode).toBe(2);
     expect(readdirSync(folder)).toEqual(before);
     expect(existsSync(join(folder, 'x.geojson'))).toBe(false);
+  });
+});
+
+describe('help of the zoning command', () => {
+  it.each([['--help'], ['-h'], ['--zones', '3', '--help']])('is printed for %s and names every option', async (...args) => {
+    const { exitCode, line } = await runZoneCommand(args);
+    expect(exitCode).toBe(0);
+    for (const option of ['--block', '--layer', '--out', '--report', '--readings', '--zones', '--layer-weights', '--cell', '--min-patch-ha', '--smooth', '--standardise', '--components', '--seed']) expect(line).toContain(`  ${option} `.trimEnd());
+    for (const type of ['vigour', 'conductivity', 'soil', 'elevation', 'ndvi', 'msavi2']) expect(line).toContain(type);
+  });
+
+  it('is pointed to where something is missing', async () => {
+    expect(await runZoneCommand([])).toEqual({ exitCode: 2, line: '--block is missing. npm run zone -- --help lists all options.' });
   });
 });
 
@@ -134,7 +153,8 @@ describe('arguments of the zoning command', () => {
 
   it.each([
     [['--layer', 'colour=a.tif'], /"colour" is no layer type; use one of vigour, conductivity/],
-    [['--layer', 'vigour'], /no layer type/],
+    [['--layer', 'vigour'], /--layer vigour: give type and file, as in vigour=ndvi\.tif/],
+    [['--layer', 'ndvi=a.tif#red=2,nir=2'], /red and nir cannot be the same band/],
     [['--layer', 'vigour='], /file is missing/],
     [['--layer', 'vigour=a.tif#shade=2'], /"shade=2" is no option/],
     [['--layer', 'soil=a.zip#red=1'], /bands make a vegetation index/],

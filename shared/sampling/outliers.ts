@@ -36,9 +36,7 @@ export function flagOutliers(values: readonly number[], options: OutlierOptions 
   const median = medianOf(values);
   const distances = values.map((value) => Math.abs(value - median));
   const mad = medianOf(distances);
-  const meanDeviation = distances.reduce((sum, distance) => sum + distance, 0) / distances.length;
-  const robustSd = mad > 0 ? mad / MAD_FACTOR : MEAN_DEVIATION_TO_SD * meanDeviation;
-  const scale = Math.max(robustSd, resolution / Math.sqrt(12));
+  const scale = Math.max(robustScale(distances), resolution / Math.sqrt(12));
   const scores = values.map((value) => (scale > 0 ? (value - median) / scale : 0));
   return { median, mad, scaledMad: MAD_TO_SD * mad, scores, flagged: scores.map((score) => Math.abs(score) > limit) };
 }
@@ -70,12 +68,18 @@ export function flagWithinGroups(groups: readonly (readonly number[])[], options
     return own;
   });
   const floor = relative ? 0 : resolution / Math.sqrt(12);
-  const scale = distances.length === 0 ? 0 : Math.max(medianOf(distances) / MAD_FACTOR, floor);
+  const scale = distances.length === 0 ? 0 : Math.max(robustScale(distances), floor);
   return scored.map((group) => {
     const flags = group.map((distance) => scale > 0 && Math.abs(distance) / scale > limit);
     const isPopulation = flags.filter(Boolean).length > Math.max(1, MOST_FLAGGED * group.length);
     return isPopulation ? flags.map(() => false) : flags;
   });
+}
+
+/** Of distances from a median: by their median, or by their mean where more than half are 0 (figures of a coarse instrument). */
+function robustScale(distances: readonly number[]): number {
+  const median = medianOf(distances);
+  return median > 0 ? median / MAD_FACTOR : (MEAN_DEVIATION_TO_SD * distances.reduce((sum, distance) => sum + distance, 0)) / distances.length;
 }
 
 export interface GrubbsTest {

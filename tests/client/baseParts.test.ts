@@ -40,6 +40,12 @@ describe('evidence mark', () => {
     expect(wrapper.find('svg').exists()).toBe(false);
   });
 
+  it('readings that are all equal have their mark in the middle', async () => {
+    wrapper = await mountWithTexts(EvidenceMark, { props: { evidence: { ...sugar, halfWidth: 0 }, trackWidth: 100 } });
+    expect(wrapper.find('.value').attributes('d')).toBe('M50 1V13');
+    expect(wrapper.find('svg').html()).not.toContain('NaN');
+  });
+
   it('bars share a scale: equal half-widths are equally long whatever the value', async () => {
     const scale = sharedScale([sugar, { ...sugar, value: 20.9 }])!;
     const widths: number[] = [];

@@ -156,6 +156,12 @@ describe('outliers', () => {
     expect(flagOutliers(rounded, { resolution: 0.5 }).flagged[3]).toBe(false);
   });
 
+  it('are seen where most readings of the day are equal, and only the far one', () => {
+    const [same, coarse] = [Array.from({ length: 15 }, () => 22.4), [21.9, 22, 21.7, 22.5, 22.4, 22.3, 22, 22, 22.1, 29.9]];
+    expect(flagWithinGroups([same, same, coarse], { resolution: 0.1 })[2]!.flatMap((flagged, i) => (flagged ? [i] : []))).toEqual([9]);
+    expect(flagWithinGroups([same, same], { resolution: 0.1 }).flat().some(Boolean)).toBe(false);
+  });
+
   it('finds a misread vine among small groups of different dates', () => {
     const groups = [[18.1, 18.6, 17.9], [21.2, 12.2, 21.7, 21.0], [23.9, 24.4, 23.5], [20.2]];
     expect(flagWithinGroups(groups)).toEqual([[false, false, false], [false, true, false, false], [false, false, false], [false]]);

@@ -75,6 +75,8 @@ export const labGroup = z.object({
   /** With everything that is not left out, and without what is marked as well. */
   withAll: interval.nullable(),
   withoutMarked: interval.nullable(),
+  /** With what somebody left out as well; null where nothing is. */
+  withLeftOut: interval.nullable(),
 });
 export type LabGroup = z.infer<typeof labGroup>;
 

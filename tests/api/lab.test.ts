@@ -120,6 +120,10 @@ describe('figures typed at the bench', () => {
     const marked = (await bench()).results.find(({ value }) => value === 29.5)!;
     expect(group).toMatchObject({ measure: 'brix', zone: 1, outliers: [marked.id], withAll: { n: 5 }, withoutMarked: { n: 4 } });
     expect(group!.withoutMarked!.mean).toBeCloseTo(22.1, 6);
+    expect(group!.withLeftOut).toBeNull();
+    await winemaker.put(`${base()}/results/${marked.id}/exclusion`, { reason: 'Bag was torn' });
+    const [after] = (await bench()).groups;
+    expect(after).toMatchObject({ outliers: [], outside: [], withAll: { n: 4 }, withLeftOut: { n: 5, mean: group!.withAll!.mean } });
   });
 });
 

@@ -1,8 +1,8 @@
 /**
  * A straight border looks like a stripe: along it a layer is alike over any distance. What tells them apart is width. A camera's
  * or a machine's swaths are narrow and each has a level of its own; plateaus are wide, and a few of them explain the whole
- * profile across. The best stair with treads of at least 40 m is found by dynamic programming (Fisher 1958, from memory); a
- * second layer measured by another sensor that steps at the same places speaks for a border too.
+ * profile across. The best stair with treads of at least 40 m is found by dynamic programming (Fisher 1958, from memory). Where a
+ * second layer measured by another sensor steps at the same places, width need not tell: treads may be as narrow as a patch.
  * In: profiles across the direction of the suspected stripes. Out: whether they are borders. Cost: steps² × treads.
  */
 
@@ -18,6 +18,7 @@ export interface AcrossProfile {
 
 /** Wider than the swath of a camera flown over vines, and than what a machine passes over at once; our own limit. */
 const NARROWEST_TREAD_M = 40;
+const NARROWEST_TREAD_TOGETHER_M = 15;
 const MOST_TREADS = 6;
 /** Share of the profile's variance that the stair must explain, alone or when another layer steps along. */
 const LEAST_EXPLAINED = 0.95;
@@ -26,9 +27,8 @@ const LEAST_CORRELATION = 0.8;
 
 /** `others`: the same profile of each other layer. */
 export function arePlateaus(profile: AcrossProfile, others: readonly AcrossProfile[], stepM: number): boolean {
-  const explained = stairShare(profile, NARROWEST_TREAD_M / stepM);
-  if (explained >= LEAST_EXPLAINED) return true;
-  return explained >= LEAST_EXPLAINED_TOGETHER && stepTogether(profile, others);
+  if (stairShare(profile, NARROWEST_TREAD_M / stepM) >= LEAST_EXPLAINED) return true;
+  return stepTogether(profile, others) && stairShare(profile, NARROWEST_TREAD_TOGETHER_M / stepM) >= LEAST_EXPLAINED_TOGETHER;
 }
 
 /** Whether one of the others rises and falls with the profile. */

@@ -5,7 +5,9 @@
  * not simply taken. Every number has a weight, exp(score / d), where d is what two scores differ by through chance alone (√2 times
  * the spread of the gap among the random fields), times the square of how surely its weakest zone comes back from ground drawn anew;
  * the advice is the median of the numbers under these weights, the choice that is off by the least on average. A number
- * with a zone that dissolves when ground is drawn anew is none, unless all do.
+ * with a zone that dissolves when ground is drawn anew is none, unless all do, and none is above the first that leaves less than five
+ * points of the variance: one more could not add what makes a zone worth having (Dobermann et al. 2003 stop where the share explained
+ * levels off; five points are common practice), and among cuts of what little is left the median would wander upwards.
  * Readings of fruit do not choose the number: they moved no choice for the better in simulation.
  * Sources: Calinski & Harabasz 1974; Tibshirani, Walther & Hastie 2001; Hennig 2007 (see verdictGap and clusterHold); weights of rivals by
  * their scores as in Burnham & Anderson 2002, the median as the estimator under absolute loss as in Berger 1985 (from memory). The
@@ -24,6 +26,8 @@ export interface ZoneCountAdvice {
 }
 
 const CLOSE_SCORE = 0.1;
+/** Share of the variance on the calm cells that one more zone must be able to add. */
+const LEAST_GAIN = 0.05;
 /** Fields that all agree would divide by nothing. */
 const LEAST_CHANCE = 1e-6;
 
@@ -38,12 +42,14 @@ export interface ZoneCountInput {
 
 /** A tie goes to the smaller number: fewer zones are less work in the field. */
 export function adviseZoneCount({ curve, layerCount, workable, stability }: ZoneCountInput): ZoneCountAdvice {
-  const rows = curve.map(({ k, gap, gapSd, separation, holds }) => ({ k, holds, gapSd, stability: stability?.get(k) ?? null, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
+  const rows = curve.map(({ k, gap, gapSd, separation, holds, withinShare }) => ({ k, holds, withinShare, gapSd, stability: stability?.get(k) ?? null, score: layerCount === 1 ? gap : Math.log(separation) + gap }));
   const scores = rows.map(({ k, score }) => ({ k, score }));
   const choice = rows.filter(({ k }) => workable.includes(k));
   if (choice.length === 0) return { best: workable[0] ?? 2, alsoOffer: [], scores };
-  const standing = choice.filter(({ holds }) => holds >= DISSOLVED_BELOW);
-  const best = middle(standing.length > 0 ? standing : choice);
+  const enough = choice.find(({ withinShare }) => withinShare <= LEAST_GAIN)?.k ?? Infinity;
+  const few = choice.filter(({ k }) => k <= enough);
+  const standing = few.filter(({ holds }) => holds >= DISSOLVED_BELOW);
+  const best = middle(standing.length > 0 ? standing : few);
   const close = choice.filter((row) => row !== best && Math.abs(row.score - best.score) <= CLOSE_SCORE && row.holds >= TRUSTED_FROM);
   const steadier = choice.filter((row) => Math.abs(row.k - best.k) === 1 && isSteadier(row, best));
   const foremost = [highest(choice)].filter((row) => row !== best);

@@ -125,7 +125,9 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
   const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]! }));
   mark('statistics', 0.98);
-  const fruit = fruitCheck(cleaned[(chosenK > 1 ? chosenK : count.best) - 1]!, stacked.readings, options.seed);
+  // The zones as drawn, along the rows where that was asked for; of blocks zoned together only this one's are drawn.
+  const tested = input.together?.length ? cleaned : own;
+  const fruit = fruitCheck(tested[(chosenK > 1 ? chosenK : count.best) - 1]!, stacked.readings, options.seed);
   mark('fruit', 1);
   return {
     engineVersion: ENGINE_VERSION,

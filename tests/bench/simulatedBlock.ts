@@ -105,7 +105,7 @@ function finished(grid: Grid, { areaHa, random }: BlockOptions, raw: Raw): Simul
   const cellsOf = (field: Float64Array, level: number, spread: number) => Float32Array.from(field, (value, cell) => (grid.share[cell]! > 0 ? level + spread * value : NaN));
   const vigour = cellsOf(raw.vigour, 0.65, 0.06);
   const survey = surveyAlongRows(grid, raw, random);
-  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, survey), survey, truth: Uint8Array.from(grid.inside), k: 1, third: () => cellsOf(raw.third(), 8, 1.5) };
+  return { grid, areaM2: areaHa * 10_000, vigour, conductivity: inverseDistance(grid, survey), survey, truth: Uint8Array.from(grid.inside), k: 1, third: () => cellsOf(smoothCells(grid, raw.third(), 3), 8, 1.5) };
 }
 
 function surveyAlongRows(grid: Grid, { soil, soilNoise }: Raw, random: Random): ValuedPoints {

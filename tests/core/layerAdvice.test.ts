@@ -99,6 +99,13 @@ describe('the number of zones', () => {
     expect(adviseZoneCount({ curve: [row(2, 0.6, 100), row(3, 0.5, 300), row(4, 0.4, 900)], layerCount: 1, workable: [2, 3, 4] }).best).toBe(2);
   });
 
+  it('ends where less than five points of the variance are left, whatever small differences say', () => {
+    // Two plateaus of 20 ha in one layer, with 2 % noise and no smoothing: two zones explain 99.7 %, and the median of the flat rest would be three.
+    const curve = [row(2, 4.7, 1, 1), row(3, 4.26, 1, 0.9), row(4, 4.29, 1, 0.69), row(5, 4.4, 1, 0.75), row(6, 4.3, 1, 0.83)].map((one) => ({ ...one, gapSd: 0.3 }));
+    const advise = (withinShare: number) => adviseZoneCount({ curve: curve.map((one) => ({ ...one, withinShare })), layerCount: 1, workable: [2, 3, 4, 5, 6] }).best;
+    expect([advise(0.003), advise(0.06)]).toEqual([2, 3]);
+  });
+
   it('takes the smaller number on a tie', () => {
     expect(adviseZoneCount({ curve: [row(2, 0.5, 100), row(3, 0.5, 100)], layerCount: 2, workable: [2, 3] }).best).toBe(2);
   });

@@ -22,6 +22,11 @@ describe('a straight border', () => {
     const border = Array.from({ length: 48 }, (_, step) => Number(step >= 20));
     expect(arePlateaus(profileOf(swaths), [], 3)).toBe(false);
     expect(arePlateaus(profileOf(border), [], 3)).toBe(true);
+    // Two sensors have no swaths in common: what both see is ground, as wide as a patch.
+    expect(arePlateaus(profileOf(swaths), [profileOf(swaths.map((level) => 40 - 8 * level))], 3)).toBe(true);
+    expect(arePlateaus(profileOf(swaths), [profileOf([...swaths].reverse().map((level) => level ** 2))], 3)).toBe(false);
+    const narrow = [0.3, -1.1, 0.9, -0.2, 1.4, -0.8, 0.5, -1].flatMap((level) => Array<number>(4).fill(level));
+    expect(arePlateaus(profileOf(narrow), [profileOf(narrow)], 3)).toBe(false);
   });
 
   it('that is blurred needs a second layer that steps at the same place', () => {

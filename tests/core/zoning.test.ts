@@ -6,6 +6,7 @@ import { findPatches } from '../../shared/analysis/sievePatches.ts';
 import { patchesPerZone } from '../../shared/analysis/zoningClean.ts';
 import { seededRandom } from '../../shared/analysis/random.ts';
 import { standardise } from '../../shared/analysis/standardise.ts';
+import { leaveOneOutRSquared } from '../../shared/analysis/verdictReadings.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
 import { featureTable, fitZones } from '../../shared/analysis/zoningFit.ts';
 import type { ZoningInput, ZoningLayer, ZoningStage } from '../../shared/analysis/zoningTypes.ts';
@@ -153,6 +154,21 @@ describe('borders of a zoning along the rows', () => {
     const across = makeZoning({ ...plain, planting, options: { ...plain.options, borders: 'wholeRow' } });
     expect(across.warnings.find(({ code }) => code === 'rows-against-ground')!.figures.share).toBeGreaterThan(0.2);
     expect(makeZoning({ ...plain, planting, options: { ...plain.options, borders: 'partRow' } }).warnings.filter(({ code }) => code === 'rows-against-ground')).toEqual([]);
+  });
+
+  it('are what fruit is tested on, since those zones are picked', () => {
+    const cells = labelVines(fine.grid, fine.truth, planting.vines);
+    const random = seededRandom(8);
+    const sampled = Array.from({ length: 60 }, () => Math.floor(random() * planting.vines.count)).filter((vine) => cells[vine]! > 0);
+    const cellOf = (vine: number) => Math.floor((fine.grid.y0 - planting.vines.y[vine]!) / 2) * fine.grid.cols + Math.floor((planting.vines.x[vine]! - fine.grid.x0) / 2);
+    const brix = { measure: 'brix', values: sampled.map((vine) => ({ cell: cellOf(vine), row: null, value: 21 + cells[vine]! + 0.3 * random() })) };
+    const explained = (['free', 'wholeRow'] as const).map((borders) => {
+      const { fruit, candidates } = makeZoning({ ...plain, planting, readings: [brix], options: { ...plain.options, borders } });
+      const zones = brix.values.map(({ cell }) => candidates[2]!.labels[cell]!);
+      expect(fruit.tests[0]!.leaveOneOutRSquared).toBeCloseTo(leaveOneOutRSquared(brix.values.map(({ value }) => value), zones), 9);
+      return fruit.tests[0]!.leaveOneOutRSquared;
+    });
+    expect(explained[0]).toBeGreaterThan(explained[1]! + 0.1);
   });
 
   it('need rows', () => {

@@ -38,7 +38,7 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
     readingsMoved: live ? inBlock.filter((reading) => isMoved(reading.vine)).length : 0,
     readingsOutside: readings.filter((reading) => reading.zone === 0).length,
     vinesMoved: live ? [...after.keys()].filter(isMoved).length : 0,
-    renumbered: live ? pairZones(before, after).filter(({ from, to }) => from !== to).map(({ from, to }) => ({ from, to })) : [],
+    renumbered: live ? pairZones(before, after).filter(({ from, to }) => from !== to).map(({ from, to }) => ({ from, to })).sort((a, b) => a.from - b.from) : [],
     openRounds: await peopleOf(access, rounds),
     plans: live ? await Plan.query().where({ estateId: access.estateId, zoningId: live.id }).whereNot({ state: 'closed' }).resultSize() : 0,
     lots: live ? await lotsTouched(access, { zoning, ground, isMoved }) : [],

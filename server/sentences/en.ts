@@ -82,6 +82,7 @@ export const en = {
   vinesInLiveLot: 'The lot "{inLive}" is confirmed and holds vines of "{inWhatIf}". Take them out of the what-if first; nothing was changed.',
   liveNotDeleted: 'The lots in force cannot be deleted as a whole. Delete the lots one by one.',
   nothingFree: 'Every zone is in a lot already. Ask to start over, or take zones out of their lots first.',
+  noZonesForLots: 'No block has zones in force this season. Publish zones first; lots are made of them.',
   noTankFree: 'No tank is free. Add tanks, or choose others.',
   tankFill: 'The least fill of tank {tank} must be below the fill allowed. Lower the one or raise the other.',
   nothingFits: 'No lot can be made within these limits, so nothing was stored. Choose larger tanks or a smaller chance of fit, give a day more room, widen the targets, or split large zones by rows.',

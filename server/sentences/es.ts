@@ -83,6 +83,7 @@ export const es: Record<SentenceKey, string> = {
   vinesInLiveLot: 'El lote «{inLive}» está confirmado y contiene cepas de «{inWhatIf}». Sáquelas antes de la hipótesis; no se cambió nada.',
   liveNotDeleted: 'Los lotes vigentes no se pueden borrar todos a la vez. Bórrelos uno a uno.',
   nothingFree: 'Todas las zonas están ya en un lote. Pida empezar de nuevo o saque antes zonas de sus lotes.',
+  noZonesForLots: 'Ninguna parcela tiene zonas vigentes esta campaña. Publique antes zonas; los lotes se hacen con ellas.',
   noTankFree: 'No hay ningún depósito libre. Añada depósitos o elija otros.',
   tankFill: 'El llenado mínimo del depósito {tank} debe ser menor que el llenado admitido. Baje uno o suba el otro.',
   nothingFits: 'Con estos límites no se puede hacer ningún lote y no se guardó nada. Elija depósitos mayores o una probabilidad menor de que quepa, dé más capacidad a un día, amplíe los objetivos o divida por hileras las zonas grandes.',

@@ -83,6 +83,7 @@ export const fr: Record<SentenceKey, string> = {
   vinesInLiveLot: 'Le lot « {inLive} » est confirmé et contient des ceps de « {inWhatIf} ». Retirez-les d’abord de l’hypothèse ; rien n’a été modifié.',
   liveNotDeleted: 'Les lots en vigueur ne peuvent pas être supprimés ensemble. Supprimez-les un par un.',
   nothingFree: 'Chaque zone est déjà dans un lot. Demandez de repartir à neuf, ou retirez d’abord des zones de leurs lots.',
+  noZonesForLots: 'Aucune parcelle n’a de zones en vigueur cette campagne. Publiez d’abord des zones ; les lots en sont faits.',
   noTankFree: 'Aucune cuve n’est libre. Ajoutez des cuves, ou choisissez-en d’autres.',
   tankFill: 'Le remplissage minimal de la cuve {tank} doit être au-dessous du remplissage admis. Baissez l’un ou relevez l’autre.',
   nothingFits: 'Aucun lot n’est possible dans ces limites ; rien n’a été enregistré. Choisissez des cuves plus grandes ou une moindre chance de tenir, donnez plus de place à un jour, élargissez les objectifs, ou partagez de grandes zones par rangs.',

@@ -83,6 +83,7 @@ export const it: Record<SentenceKey, string> = {
   vinesInLiveLot: 'Il lotto «{inLive}» è confermato e contiene ceppi di «{inWhatIf}». Prima toglierli dall’ipotesi; nulla è stato cambiato.',
   liveNotDeleted: 'I lotti in vigore non si possono eliminare tutti insieme. Eliminarli uno per uno.',
   nothingFree: 'Ogni zona è già in un lotto. Chiedere di ricominciare o togliere prima zone dai loro lotti.',
+  noZonesForLots: 'Nessun appezzamento ha zone in vigore in questa stagione. Pubblicare prima delle zone; i lotti sono fatti di zone.',
   noTankFree: 'Nessuna vasca è libera. Aggiungere vasche o sceglierne altre.',
   tankFill: 'Il riempimento minimo della vasca {tank} deve essere sotto il riempimento ammesso. Abbassare l’uno o alzare l’altro.',
   nothingFits: 'Entro questi limiti non si può fare alcun lotto; nulla è stato registrato. Scegliere vasche più grandi o una minore probabilità che il lotto ci stia, dare più spazio a un giorno, allargare gli obiettivi o dividere per filari le zone grandi.',

@@ -83,6 +83,7 @@ export const pt: Record<SentenceKey, string> = {
   vinesInLiveLot: 'O lote «{inLive}» está confirmado e contém cepas de «{inWhatIf}». Tire-as primeiro da hipótese; nada foi alterado.',
   liveNotDeleted: 'Os lotes em vigor não podem ser apagados todos de uma vez. Apague-os um a um.',
   nothingFree: 'Todas as zonas já estão num lote. Peça para começar de novo ou tire primeiro zonas dos seus lotes.',
+  noZonesForLots: 'Nenhuma parcela tem zonas em vigor nesta campanha. Publique primeiro zonas; os lotes fazem-se delas.',
   noTankFree: 'Nenhuma cuba está livre. Junte cubas ou escolha outras.',
   tankFill: 'O enchimento mínimo da cuba {tank} tem de ser menor do que o admitido. Baixe um ou suba o outro.',
   nothingFits: 'Com estes limites não se pode fazer nenhum lote; nada foi guardado. Escolha cubas maiores ou uma probabilidade menor de caber, dê mais capacidade a um dia, alargue os objetivos ou divida por bardos as zonas grandes.',

@@ -54,7 +54,7 @@ describe('an estate with nothing yet', () => {
     const review = (await owner.get(`${base()}/review`)).body as ReviewView;
     expect(review).toMatchObject({ lots: [], zones: [], blocks: [], errorParts: [], summary: { n: 0, bias: null, few: true } });
     expect((await owner.get(`${base()}/factors`)).body.items).toEqual([]);
-    expect((await owner.post(`${base()}/lot-suggestions`, { name: 'None', firstDay: '2026-09-20' })).body.code).toBe('nothingFree');
+    expect((await owner.post(`${base()}/lot-suggestions`, { name: 'None', firstDay: '2026-09-20' })).body.code).toBe('noZones');
   });
 
   it('with zones but no readings expects assumed tonnes with their range, and no composition', async () => {

@@ -1,11 +1,9 @@
 import type { z } from 'zod';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
-import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
-import type { lotChange, lotParts, newLot, newTank, tankChange, zoneMove } from '../../../shared/contracts/lots.ts';
+import type { lotChange, lotParts, newLot, newTank, tankChange } from '../../../shared/contracts/lots.ts';
 import type { Transaction } from 'objection';
 import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Stale, Unusable } from '../../errors.ts';
-import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
@@ -13,13 +11,12 @@ import { LotRowRun, vineRange } from '../../models/LotRowRun.ts';
 import { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Scenario } from '../../models/Scenario.ts';
 import { Tank } from '../../models/Tank.ts';
-import { Zone } from '../../models/Zone.ts';
-import { Zoning } from '../../models/Zoning.ts';
 import { findScenario } from './board.ts';
 import { boardOfLot, keepDecision } from './decisions.ts';
-import { runsOf } from './boardGround.ts';
+import { runsOf, type Run } from './boardGround.ts';
 import { requireFruitDay } from './fruitDay.ts';
 import { requireNoPickStop } from './pickStops.ts';
+import { commonRuns, liveZoneRuns } from './zoneRuns.ts';
 import { say } from '../../sentences/say.ts';
 
 export async function createLot(access: Access, input: z.infer<typeof newLot>, today: string): Promise<{ id: string }> {
@@ -52,40 +49,27 @@ export async function setLotParts(access: Access, lotId: string, input: z.infer<
   await Lot.transaction(async (trx) => {
     const lot = await lockLot(trx, access, lotId, version);
     requireDraft(lot);
+    const held = (await runsOf(access.estateId, lot.scenarioId, trx)).filter((run) => run.lotId === lotId);
     await LotPart.query(trx).where({ estateId: access.estateId, lotId }).delete();
-    for (const part of input.parts) await addPart(trx, access, lot, part);
+    for (const part of input.parts) await addPart(trx, access, lot, part, held);
     await lot.$query(trx).patch({ version: lot.version + 1 });
     await writeAudit(trx, access, { action: 'lots.parts', subjectType: 'lot', subjectId: lotId, subjectName: lot.name, after: input.parts });
   });
 }
 
-/** Moves what one lot holds of a zone into another, in one step: it is in both at no time, and never in none. */
-export async function moveZone(access: Access, input: z.infer<typeof zoneMove>): Promise<void> {
-  await Lot.transaction(async (trx) => {
-    const from = await lockLot(trx, access, input.fromLotId, input.fromVersion);
-    const to = await lockLot(trx, access, input.toLotId, input.toVersion);
-    if (from.scenarioId !== to.scenarioId) throw new Unusable('otherScenario', say('otherScenario'));
-    [from, to].forEach(requireDraft);
-    const parts = await LotPart.query(trx).where({ estateId: access.estateId, lotId: from.id, zoneId: input.zoneId });
-    if (parts.length === 0) throw new Unusable('notInLot', say('notInLot', { lot: from.name }));
-    await LotPart.query(trx).where({ estateId: access.estateId }).whereIn('id', parts.map(({ id }) => id)).patch({ lotId: to.id });
-    await from.$query(trx).patch({ version: from.version + 1 });
-    await to.$query(trx).patch({ version: to.version + 1 });
-    await writeAudit(trx, access, { action: 'lots.moveZone', subjectType: 'lot', subjectId: to.id, subjectName: to.name, before: { lot: from.name }, after: { lot: to.name, zones: parts.map(({ zoneNumber }) => zoneNumber) } });
-  });
-}
-
-/** Puts a zone in force, or rows of it, into a lot; refused when a vine of it is in another. */
-export async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }): Promise<void> {
-  const zone = await Zone.query(trx).findOne({ estateId: access.estateId, id: part.zoneId }).select('id', 'zoningId', 'number', 'name').throwIfNotFound();
-  const zoning = await Zoning.query(trx).findOne({ estateId: access.estateId, id: zone.zoningId }).throwIfNotFound();
-  if (zoning.state !== 'live') throw new Unusable('zoneNotLive', say('zoneNotLive', { number: zone.number }));
-  const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
+/**
+ * Puts a zone in force, or rows of it, into a lot; refused when a vine of it is in another. Rows that `held` has in part
+ * stay as they are: zones published since may cut a row elsewhere than the lot does.
+ */
+export async function addPart(trx: Transaction, access: Access, lot: Lot, part: { zoneId: string; rowIds: string[] | null }, held: readonly Run[] = []): Promise<void> {
+  const { zone, zoning, ground, runs: all } = await liveZoneRuns(trx, access.estateId, part.zoneId);
   const wanted = part.rowIds === null ? null : new Set(part.rowIds);
-  const runs = rowRuns(ground.vines, zonesOfVines(ground, zoning))
-    .filter((run) => run.label === zone.number)
-    .map((run) => ({ rowId: ground.stored[run.rowIndex]!.id, from: run.fromOrdinal, to: run.toOrdinal }))
-    .filter((run) => wanted === null || wanted.has(run.rowId));
+  const runs = all.flatMap((run) => {
+    if (wanted === null) return [run];
+    if (!wanted.has(run.rowId)) return [];
+    const had = commonRuns(run, held);
+    return had.length > 0 ? had : [run];
+  });
   if (runs.length === 0) throw new Unusable('emptyPart', say('emptyPart', { number: zone.number, block: ground.block.name }));
   await requireFree(trx, access, lot, { runs, what: `${ground.block.name} zone ${zone.number}` });
   const row = await LotPart.query(trx).insert({ estateId: access.estateId, lotId: lot.id, blockId: zoning.blockId, zoneId: zone.id, zoneNumber: zone.number, zoneName: zone.name });
@@ -93,7 +77,7 @@ export async function addPart(trx: Transaction, access: Access, lot: Lot, part: 
 }
 
 /** Zones of a confirmed lot are what its notice says; those of a picked one are history. */
-function requireDraft({ name, state }: Lot): void {
+export function requireDraft({ name, state }: Lot): void {
   if (state === 'confirmed') throw new Unusable('lotStands', say('lotConfirmed', { lot: name }));
   if (state === 'picked') throw new Unusable('lotStands', say('lotPicked', { lot: name }));
 }

@@ -46,6 +46,7 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const kept = ground.lots.filter((lot) => !asked.startOver || lot.state !== 'draft');
   const zones = freeZones(ground, { kept, asked, earliest: await earliestDays(access.estateId, asked.firstDay) });
   const tanks = await freeTanks(access.estateId, { kept, asked });
+  if (ground.blocks.every((block) => block.zones.length === 0)) throw new Unusable('noZones', say('noZonesForLots'));
   if (zones.length === 0) throw new Unusable('nothingFree', say('nothingFree'));
   if (tanks.length === 0) throw new Unusable('noTankFree', say('noTankFree'));
   const room = await roomFrom(access, asked);

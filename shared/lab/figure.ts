@@ -24,6 +24,8 @@ export function readFigure(text: string, mark: DecimalMark | null): Figure {
   if (!parts) return { kind: 'unreadable' };
   const below = /^[<≤]/.test(parts.sign ?? '');
   if (/[>≥]/.test(parts.sign ?? '')) return { kind: 'unreadable' };
+  // A sign behind the figure doubts it or belongs to something else.
+  if (/^[-–—?!]/.test(parts.unit ?? '')) return { kind: 'unreadable' };
   const power = parts.exponent ? 10 ** Number(parts.exponent.slice(1)) : 1;
   // A second figure in the cell ("23.4-23.8", "2.1 (1:2)") is not left out silently.
   if (/\d/.test((parts.unit ?? '').replace(figuresOfUnits, ''))) return { kind: 'unreadable' };

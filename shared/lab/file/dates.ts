@@ -40,8 +40,10 @@ function clearDate(cell: RawCell): string | null {
   if (iso) return dayOf([Number(iso[3]), Number(iso[2]), Number(iso[1])], 'dmy');
   const worded = /^(?:[a-z]{2,10}[.,]? )?(\d{1,2})(?:er|\.|st|nd|rd|th)?[ -](?:de |di )?([a-z]{3,10})[. -]+(?:de )?(\d{2}|\d{4})\b/.exec(plainText(text));
   if (worded) return dayOf([Number(worded[1]), monthOf(worded[2]!), fullYear(Number(worded[3]))], 'dmy');
-  const monthFirst = /^([a-z]{3,10})[. ]+(\d{1,2})(?:st|nd|rd|th)?,? (\d{4})\b/.exec(plainText(text));
+  const monthFirst = /^(?:[a-z]{2,10}[.,]{1,2} )?([a-z]{3,10})[. ]+(\d{1,2})(?:st|nd|rd|th)?,? (\d{4})\b/.exec(plainText(text));
   if (monthFirst) return dayOf([Number(monthFirst[2]), monthOf(monthFirst[1]!), Number(monthFirst[3])], 'dmy');
+  const compact = /^(20\d{2})(\d{2})(\d{2})$/.exec(text);
+  if (compact) return dayOf([Number(compact[3]), Number(compact[2]), Number(compact[1])], 'dmy');
   // A spreadsheet's own count of days, when the cell lost its format.
   if (/^4\d{4}(\.\d+)?$/.test(text)) return new Date(spreadsheetStart + Math.floor(Number(text)) * dayMs).toISOString().slice(0, 10);
   return null;

@@ -57,6 +57,7 @@ describe('files of laboratories', () => {
     };
     expect(await daysOf(['3 sept. 2026', '3 settembre 2026', '3. Sep 2026', '3 de septiembre de 2026'])).toEqual(Array.from({ length: 4 }, () => '2026-09-03'));
     expect(await daysOf(['1er septembre 2026', '3 set 2026', 'September 3rd, 2026', 'jeu. 3 sept 26'])).toEqual(['2026-09-01', '2026-09-03', '2026-09-03', '2026-09-03']);
+    expect(await daysOf(['20260903', 'Thu, Sep 3, 2026', '2026-09-03T14:30:00Z', '20261303'])).toEqual(['2026-09-03', '2026-09-03', '2026-09-03', null]);
     const doubtful = ['2026-10-04', '2026-08-20', '2026-09-04'];
     expect(await daysOf(doubtful)).toEqual([null, null, '2026-09-04']);
     expect(await daysOf(doubtful, { dateDoubt: 'keep' })).toEqual(doubtful);

@@ -101,5 +101,6 @@ export const uglyFiles: readonly UglyFile[] = [
   { name: 'one title over two columns', bytes: utf8(`Code;Brix;Brix\n${A};23.4;23.6\n${B};22.1;22.1\n`), asked: { 'columns:brix': 'Brix #3' }, read: [r(A, 'brix', 23.6), r(B, 'brix', 22.1)] },
   { name: 'a day of analysis that is still to come', bytes: utf8(`Sample;Date;Brix\n${A};2026-10-04;23,4\n${B};2026-09-04;22,2\n`), asked: { dateDoubt: 'leaveOut' }, read: [r(A, 'brix', 23.4), r(B, 'brix', 22.2)] },
   { name: 'a day of analysis before the bag was picked', bytes: utf8(`Sample;Date;Brix\n${A};20 août 2026;23,4\n${B};4 sept. 2026;22,2\n`), asked: { dateDoubt: 'keep' }, read: [r(A, 'brix', 23.4), r(B, 'brix', 22.2)] },
+  { name: 'figures with a sign behind them', bytes: utf8(`Code;Brix;pH\n${A};23.4?;3.41\n${B};22.1-;3.38\n${C};21.0;3.30\n`), asked: { 'cell:2:Brix': 'leaveOut', 'cell:3:Brix': 'leaveOut' }, read: [r(C, 'brix', 21), r(A, 'ph', 3.41), r(B, 'ph', 3.38), r(C, 'ph', 3.3)] },
   { name: 'a day that nobody can read', bytes: utf8(`Sample;Date;Brix\n${A};week 36;23,4\n${B};Sept 4, 2026;22,2\n`), read: [r(A, 'brix', 23.4), r(B, 'brix', 22.2)], said: ['dateUnread'] },
 ];

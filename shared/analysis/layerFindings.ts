@@ -103,7 +103,8 @@ const checks: readonly Check[] = [
   ({ facts }) => (dated.has(facts.type) && facts.measuredOn === null ? { code: 'noDate', severity: 'amber', params: {} } : null),
   ({ facts }) => growth(facts),
   ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.pixelSizeM > facts.rowSpacingM / 4 ? { code: 'alleyMixed', severity: 'amber', params: { pixelM: facts.pixelSizeM, spacingM: facts.rowSpacingM } } : null),
-  ({ facts }) => (facts.type === 'vigour' && facts.alleys === 'green' ? { code: 'greenAlleys', severity: 'amber', params: {} } : null),
+  // Strips along the rows leave the alleys out, whatever grows there.
+  ({ facts }) => (facts.type === 'vigour' && facts.alleys === 'green' && facts.canopy?.threshold !== null ? { code: 'greenAlleys', severity: 'amber', params: {} } : null),
   ({ facts }) => canopy(facts),
   (judged) => heights(judged),
   ({ facts }) => (facts.type === 'vigour' && facts.pixelSizeM !== null && facts.bandMeans === null ? { code: 'cloudUnseen', severity: 'note', params: {} } : null),

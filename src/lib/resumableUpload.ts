@@ -36,8 +36,12 @@ export function resumableUpload(file: File, endpoint: string, handlers: Resumabl
     clearTimeout(timer);
     if (!isPaused) upload?.start();
   };
+  const lineGone = () => {
+    if (!isPaused) handlers.onWaiting(true);
+  };
   const settle = () => {
     clearTimeout(timer);
+    window.removeEventListener('offline', lineGone);
     window.removeEventListener('online', goOn);
   };
   const done = new Promise<string>((resolve, refuse) => {
@@ -77,6 +81,7 @@ export function resumableUpload(file: File, endpoint: string, handlers: Resumabl
       const [earlier] = await sender.findPreviousUploads();
       if (earlier) sender.resumeFromPreviousUpload(earlier);
       window.addEventListener('online', goOn);
+      window.addEventListener('offline', lineGone);
       goOn();
     }).catch(refuse);
   });

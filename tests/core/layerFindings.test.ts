@@ -67,6 +67,8 @@ describe('findings about a layer', () => {
     expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.8, share: 0.3, split: { valley: 0.1, kinds: 'two' } } }))).toEqual(['note canopyOnly']);
     expect(codes(findings(slope, { canopy: { threshold: 0.4, separability: 0.4, share: 0.3, split: { valley: 0.1, kinds: 'two' } } }))).toEqual(['amber canopyUnclear', 'note canopyOnly']);
     expect(codes(findings(slope, { canopy: { threshold: null, separability: 0.1, share: 0.3, split: null } }))).toEqual(['amber rowsMissCanopy', 'note canopyByRows']);
+    expect(codes(findings(slope, { alleys: 'green', canopy: { threshold: null, separability: 0.9, share: 0.3, split: null } }))).toEqual(['note canopyByRows']);
+    expect(codes(findings(slope, { alleys: 'green', canopy: { threshold: 0.4, separability: 0.8, share: 0.3, split: { valley: 0.1, kinds: 'two' } } }))).toEqual(['amber greenAlleys', 'note canopyOnly']);
   });
 
   it('doubt a canopy of one hump and one that is the greenest of three kinds', () => {

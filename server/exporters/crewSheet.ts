@@ -120,9 +120,10 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   const told = (time: string) => moment.format(new Date(time));
   // The whole of the estate's day: the sheet is printed before and carried until evening.
   const closed = restrictionsWithin(round.restrictions, { ...dayBounds(timeZone, round.onDate), rowIds: round.stops.map(({ rowId }) => rowId) });
-  for (const { startsAt, endsAt, product, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}: ${product}, ${setBy})`, edge, pdf.y, { width });
+  for (const { startsAt, endsAt, product, labelInterval, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}: ${product}, ${setBy}; ${labelInterval})`, edge, pdf.y, { width });
   if (closed.length === 0) pdf.font('Helvetica').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
-  pdf.font('Helvetica').fontSize(9).text(texts.law, { width });
+  // A paper does not learn of what is typed later: it says of when it speaks.
+  pdf.font('Helvetica').fontSize(9).text(closed.length === 0 ? texts.law : `${texts.asOf} ${told(round.checkedAt)}. ${texts.law}`, { width });
   pdf.text(`${texts.safety} ${texts.meeting}: ${round.safety.meetingPoint || '-'}. ${texts.emergency}: ${round.safety.emergencyNumber || '-'}.`, { width });
   pdf.font('Helvetica-Bold').text(texts.notVine, { width });
   pdf.y += 4;

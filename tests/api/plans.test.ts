@@ -359,6 +359,8 @@ describe('a round', () => {
     expect(lifters.length).toBeGreaterThan(0);
     for (const name of lifters) expect(refused.body.detail).toContain(name);
     expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open', startedAt: '2026-07-11T07:00:00Z' })).status).toBe(204);
+    // Open already, such as by others: whoever goes in later is stopped all the same.
+    expect((await agent.patch(`${base()}/rounds/${roundId}`, { state: 'open', startedAt: '2026-07-10T07:00:00Z' })).body.code).toBe('entryRestricted');
   });
 
   it('is opened beside restricted rows that it does not touch', async () => {

@@ -78,13 +78,14 @@ describe('the crew sheet', () => {
   });
 
   it('shows every restriction of the estate’s own day, whatever the hour, and when it was looked for', async () => {
-    const rule = (startsAt: string, endsAt: string, product: string) => ({ id: product, blockId: '', blockName: 'Marl', rowIds: null, startsAt, endsAt, product, labelInterval: '', noPickBefore: null, note: '', setBy: 'Mara Thorn', lifted: null, pickChanges: [], inForce: true });
+    const rule = (startsAt: string, endsAt: string, product: string) => ({ id: product, blockId: '', blockName: 'Marl', rowIds: null, startsAt, endsAt, product, labelInterval: '12 h, until dry', noPickBefore: null, note: '', setBy: 'Mara Thorn', lifted: null, pickChanges: [], inForce: true });
     const restrictions = [rule('2026-08-19T14:00:00Z', '2026-08-20T06:00:00Z', 'Sulphur'), rule('2026-08-20T15:00:00Z', '2026-08-21T15:00:00Z', 'Copper'), rule('2026-08-20T22:30:00Z', '2026-08-21T09:00:00Z', 'Tomorrow’s')];
     const words = async (timeZone: string, rules: typeof restrictions) => readPdf(await crewSheet([{ person: 'Nia Holt', language: 'en', round: { ...round([stop(1, ['clusterCount'])]), restrictions: rules } }], { ...options, timeZone })).flatMap(({ texts }) => texts).join(' ');
     const paris = await words('Europe/Paris', restrictions);
     // Neither is in force at noon; both are in force within that day in Paris. The third begins after its midnight.
     expect(paris).toMatch(/DO NOT ENTER until Thu,? 20 Aug,? (at )?08:00 .*Sulphur, Mara Thorn/u);
-    expect(paris).toContain('Copper, Mara Thorn');
+    expect(paris).toContain('Copper, Mara Thorn; 12 h, until dry');
+    expect(paris).toMatch(/As recorded \w+,? \d+ \w+,? (at )?\d\d:\d\d\. The product label/u);
     expect(paris).not.toContain('Tomorrow');
     expect(paris).not.toContain('No restriction recorded');
     // In New Zealand that day is over at noon by UTC.

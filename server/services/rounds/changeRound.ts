@@ -28,8 +28,9 @@ export async function acknowledgeRound(access: Access, roundId: string, now: Dat
 
 /**
  * Opens, closes or calls off a round. A round cannot be opened where an entry restriction is in force for its rows.
- * Opening an open round or closing a closed one changes nothing, so that a phone may send it again. Who walks a part closes
- * their own part; the round is closed with the last of them, or as a whole by whoever sends rounds.
+ * Opening an open round or closing a closed one changes nothing, so that a phone may send it again; what forbids entering
+ * forbids it there too. Who walks a part closes their own part; the round is closed with the last of them, or as a whole
+ * by whoever sends rounds.
  */
 export async function changeRound(access: Access, roundId: string, change: z.infer<typeof roundChange>, now: Date): Promise<void> {
   if (change.state === 'called off' || change.whole) requireReach(access, 'rounds.assign');
@@ -37,10 +38,11 @@ export async function changeRound(access: Access, roundId: string, change: z.inf
     const round = await Round.query(trx).findOne({ estateId: access.estateId, id: roundId }).forUpdate().throwIfNotFound();
     const member = await RoundPerson.query(trx).findOne({ estateId: access.estateId, roundId, personId: access.personId });
     if (!member && seesOwnRoundsOnly(access)) throw new Missing();
+    // Also where others have begun: whoever goes in now is stopped now.
+    if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
     if (round.state === change.state) return;
     if (round.state === 'called off') throw new Clash('calledOff', say('calledOff'));
     if (change.state === 'closed' && !change.whole && member && (await isLeftToOthers(trx, access, member, now))) return;
-    if (change.state === 'open') await refuseRestricted(trx, round, { targetIds: member?.targetIds ?? null, at: change.startedAt ?? now.toISOString() });
     const before = { state: round.state };
     await round.$query(trx).patch({ state: change.state, closedAt: change.state === 'closed' ? now : null });
     await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before, after: change });

@@ -80,6 +80,8 @@ export const walkStop = z.object({
   opensZone: z.boolean(),
   measures: z.array(z.string()),
   reserve: z.object({ rowId: id, rowLabel: z.string(), ordinal: z.number().int(), vineNumber: z.number().int() }).nullable(),
+  /** Something of this target has been read at its reserve, so that the rest is read there too. */
+  atReserve: z.boolean().optional(),
 });
 export type WalkStop = z.infer<typeof walkStop>;
 
@@ -140,6 +142,8 @@ export const fieldRound = z.object({
   received: z.array(fieldReading),
   /** Vines that somebody has read already, whoever it was. */
   doneTargetIds: z.array(id),
+  /** What of them was read, without the values; absent in a round that was kept before this was told. */
+  readAsks: z.array(z.object({ targetId: id, measureCode: z.string() })).optional(),
   safety: z.object({ emergencyNumber: z.string(), meetingPoint: z.string() }),
   restrictions: z.array(restrictionView),
   /** Who may lift a restriction before its time. */

@@ -23,8 +23,8 @@ export const vineStates = ['missing', 'dead', 'replant', 'offType', 'sick'] as c
 export const vineState = z.enum(vineStates);
 export type VineState = z.infer<typeof vineState>;
 
-/** Known vines that are not plain living ones; `proposed` by crew until somebody takes it over. */
-export const knownVine = z.object({ ordinal: z.number().int(), state: vineState, proposed: z.boolean() });
+/** Known vines that are not plain living ones; `proposed` by crew until somebody takes it over, with who found it and when for whoever may. */
+export const knownVine = z.object({ ordinal: z.number().int(), state: vineState, proposed: z.boolean(), noted: z.object({ by: z.string(), at: z.string() }).optional() });
 export type KnownVine = z.infer<typeof knownVine>;
 
 export const blockRow = z.object({

@@ -30,7 +30,8 @@ export function askedAt(round: Pick<FieldRound, 'measures'>, stop: WalkStop): Fi
 /** The vine to read at a stop: the target, its reserve when something else stands there, or null when neither can be read. */
 export function vineAt(stop: WalkStop, entries: readonly WalkEntry[]): StopVine | null {
   const isFound = (rowId: string, ordinal: number) => entries.some((entry) => entry.kind === 'finding' && entry.rowId === rowId && entry.ordinal === ordinal);
-  if (!isFound(stop.rowId, stop.ordinal)) return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false };
+  const isLeft = isFound(stop.rowId, stop.ordinal) || (stop.atReserve === true && stop.reserve !== null);
+  if (!isLeft) return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false };
   if (stop.reserve === null || isFound(stop.reserve.rowId, stop.reserve.ordinal)) return null;
   return { ...stop.reserve, isReserve: true };
 }

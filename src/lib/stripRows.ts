@@ -1,4 +1,4 @@
-import type { BlockRowView, BlockRowsView } from '../../shared/contracts/rows.ts';
+import type { BlockRowView, BlockRowsView, VineState } from '../../shared/contracts/rows.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { vineLabel, vineOrdinal } from '../../shared/geo/numbering.ts';
 import { toAlongAcross } from '../../shared/geo/rowFrame.ts';
@@ -103,4 +103,23 @@ function zoneRuns(zoneOfVine: readonly number[], fromEnd: boolean): { zone: numb
     else runs.push({ zone, from: at + 1, to: at + 1 });
   });
   return runs;
+}
+
+/** What the crew found at a place, as people count it. */
+export interface ProposedVine {
+  readonly rowId: string;
+  readonly ordinal: number;
+  readonly row: string;
+  readonly vine: number;
+  readonly state: VineState;
+  readonly noted?: { readonly by: string; readonly at: string };
+}
+
+/** Proposals of the crew that wait, row by row. */
+export function proposedVines(block: StripBlock, rows: Pick<BlockRowsView, 'items' | 'numbering'>): ProposedVine[] {
+  const laid = laidRows(block, rows).rows;
+  return rows.items.flatMap(({ id, label, vines }, at) => {
+    const row = laid[at];
+    return row ? vines.filter(({ proposed }) => proposed).map(({ ordinal, state, noted }) => ({ rowId: id, ordinal, row: label, vine: vineLabel(row, ordinal, rows.numbering.vineOneEnd), state, ...(noted ? { noted } : {}) })) : [];
+  });
 }

@@ -7,6 +7,7 @@ import { Block } from '../../server/models/Block.ts';
 import { EntryRestriction } from '../../server/models/EntryRestriction.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
+import type { BlockRowsView } from '../../shared/contracts/rows.ts';
 import { lonLatAt, outline, rectangle } from './support/shapes.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
@@ -273,6 +274,9 @@ describe('the vine census', () => {
     const { items } = (await owner.get(`${base()}/blocks/${block.id}/rows`)).body;
     const mark = (ordinal: number, state: string) => ({ marks: [{ rowId: items[0].id, ordinal, state }] });
     expect((await crew.put(path, mark(7, 'missing'))).body).toMatchObject({ changed: 1, counts: { missing: 0, living: 1584, proposed: 1, census: 'unknown' } });
+    const proposals = async (who: Agent) => ((await who.get(`${base()}/blocks/${block.id}/rows`)).body as BlockRowsView).items.flatMap(({ vines }) => vines.filter(({ proposed }) => proposed));
+    expect(await proposals(owner)).toMatchObject([{ ordinal: 7, state: 'missing', noted: { by: expect.any(String) as string, at: expect.stringMatching(/^\d{4}-/u) as string } }]);
+    expect(await proposals(crew)).toEqual([{ ordinal: 7, state: 'missing', proposed: true }]);
     expect((await owner.put(path, mark(7, 'missing'))).body.counts).toMatchObject({ missing: 1, proposed: 0, census: 'partial' });
     expect((await crew.put(path, mark(7, 'replant'))).body).toMatchObject({ changed: 0, skipped: 1 });
     expect((await crew.put(path, mark(7, 'living'))).body.changed).toBe(0);

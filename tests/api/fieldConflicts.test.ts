@@ -156,6 +156,10 @@ describe('a paper sheet', () => {
     await send(ana, { readings: [made.reading(0, { value: 21 })] });
     const walk = await made.manager.get(`${base()}/rounds/${made.roundId}?person=${made.crew[ana]!.id}`);
     expect(walk.body).toMatchObject({ received: [{ targetId: made.targets[0]!.id, value: 21 }], others: [{ name: made.crew[ben]!.name }] });
+    // Whoever takes over learns what was read, and not the value.
+    const { body: seen } = await made.crew[ben]!.agent.get(`${base()}/rounds/${made.roundId}`);
+    expect(seen.readAsks).toEqual([{ targetId: made.targets[0]!.id, measureCode: 'clusterCount' }]);
+    expect(seen.received).toEqual([]);
     expect((await made.crew[ben]!.agent.get(`${base()}/rounds/${made.roundId}?person=${made.crew[ana]!.id}`)).status).toBe(403);
   });
 

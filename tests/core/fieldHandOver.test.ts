@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import type { FieldMeasure, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { vinesForBag } from '../../shared/field/bagVines.ts';
 import { takenWalk } from '../../shared/field/takenWalk.ts';
-import { isStopDone, type WalkEntry } from '../../shared/field/walkState.ts';
+import { isStopDone, vineAt, type WalkEntry } from '../../shared/field/walkState.ts';
 
 const stop = (number: number, over: Partial<WalkStop> = {}): WalkStop => ({
   targetId: `t${number}`, number, rowId: 'row', rowLabel: '4', rowLabelWas: null, ordinal: number * 10, vineNumber: number * 10, zone: 1, drawOrder: number, enterBy: 'start', heading: 'toEnd',
@@ -18,6 +18,17 @@ describe('a walk that is taken over', () => {
 
   it('leaves out what the server knew as read', () => {
     expect(takenWalk(round, 'ana', null)!.stops.map(({ targetId }) => targetId)).toEqual(['t3', 't4', 't5']);
+  });
+
+  it('keeps a vine of which only a part is read, with the rest, and has it read at the reserve where the rest was', () => {
+    const two = (number: number, over: Partial<WalkStop> = {}) => stop(number, { measures: ['clusterCount', 'pruningWeight', 'brix'], ...over });
+    const measures = [count, { ...count, code: 'pruningWeight' }, brix];
+    const read = (targetId: string, ...codes: string[]) => codes.map((measureCode) => ({ targetId, measureCode }));
+    const half = { ...round, measures, readAsks: [...read('t2', 'clusterCount', 'pruningWeight'), ...read('t3', 'clusterCount')], others: [{ id: 'ana', name: 'Ana', stops: [two(2), two(3, { atReserve: true }), two(4)] }] } as unknown as FieldRound;
+    const { stops } = takenWalk(half, 'ana', null)!;
+    expect(stops.map(({ targetId, measures }) => [targetId, ...measures])).toEqual([['t3', 'pruningWeight', 'brix'], ['t4', 'clusterCount', 'pruningWeight', 'brix']]);
+    expect(stops.map((one) => vineAt(one, [])!.ordinal)).toEqual([31, 40]);
+    expect(vineAt(stops[0]!, [found(31)])).toBeNull();
   });
 
   it('begins where the walker says that the other had come to', () => {

@@ -1,3 +1,4 @@
+import { may } from '../../../shared/catalog/permissions.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { numberingFromTap, renumberRows } from '../../../shared/geo/numbering.ts';
 import { rowsFromStored } from '../../../shared/geo/storedRows.ts';
@@ -9,6 +10,7 @@ import { Unusable } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { BlockRow, relabelBlockRows } from '../../models/BlockRow.ts';
+import { Person } from '../../models/Person.ts';
 import { Vine } from '../../models/Vine.ts';
 import { lockBlock } from './change.ts';
 import { findBlock } from './view.ts';
@@ -20,18 +22,28 @@ export async function listRows(access: Access, blockId: string): Promise<BlockRo
   const block = await findBlock(access, blockId);
   const where = { estateId: access.estateId, blockId };
   const rows = await BlockRow.query().where(where).whereNull('retiredAt').orderBy('ordinal').select('id', 'ordinal', 'label', 'labelWas', 'vineCount', 'pieces');
-  const vines = await Vine.query().where(where).orderBy('ordinal').select('rowId', 'ordinal', 'state', 'proposed');
+  const vines = await Vine.query().where(where).orderBy('ordinal').select('rowId', 'ordinal', 'state', 'proposed', 'notedBy', 'notedAt');
+  const noted = await notedOf(access, vines);
   const known = groupBy(vines, (vine) => vine.rowId);
   return {
     items: rows.map(({ id, ordinal, label, labelWas, vineCount, pieces }) => ({
       id, ordinal, label, labelWas, vineCount, pieces,
-      vines: (known.get(id) ?? []).map((vine) => ({ ordinal: vine.ordinal, state: vine.state, proposed: vine.proposed })),
+      vines: (known.get(id) ?? []).map((vine) => ({ ordinal: vine.ordinal, state: vine.state, proposed: vine.proposed, ...noted(vine) })),
     })),
     total: rows.length,
     numbering: { rowOneSide: block.rowOneSide, vineOneEnd: block.vineOneEnd, firstRowLabel: block.firstRowLabel },
     counts: (await vineTotals(access.estateId, [blockId]))(blockId, block.census).vines,
     version: block.version,
   };
+}
+
+/** Who found what a proposal says, for whoever takes it over. */
+async function notedOf(access: Access, vines: readonly Vine[]): Promise<(vine: Vine) => { noted?: { by: string; at: string } }> {
+  const proposals = may(access.roles, 'census.edit') ? vines.filter(({ proposed }) => proposed) : [];
+  if (proposals.length === 0) return () => ({});
+  const people = await Person.query().findByIds([...new Set(proposals.flatMap(({ notedBy }) => notedBy ?? []))]).select('id', 'name');
+  const nameOf = new Map(people.map(({ id, name }) => [id, name]));
+  return ({ proposed, notedBy, notedAt }) => (proposed ? { noted: { by: nameOf.get(notedBy ?? '') ?? '', at: notedAt.toISOString() } } : {});
 }
 
 /** Gives rows and vines new numbers. Identities stay, so that everything measured stays on its vine. */

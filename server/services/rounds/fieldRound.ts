@@ -43,10 +43,11 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
   const { shares } = round.walk as RoundWalk;
   const stops = (me ? shares.filter((share) => share.personId === personId) : shares).flatMap((share) => share.stops);
   const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, sampledZoneOf.get(zoneId) ?? 0]));
-  const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId');
+  const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId', 'rowId', 'ordinal');
   const { block } = ground;
   const targetOf = new Map(targets.map((target) => [target.id, target]));
-  const stopsOf = (list: StoredStop[]) => list.flatMap((stop) => stopOf(stop, { ground, target: targetOf.get(stop.targetId), zone: zoneOfTarget.get(stop.targetId) ?? 0 }));
+  const atReserve = new Set(readings.flatMap(({ targetId, rowId, ordinal }) => (targetId !== null && isReserveOf(targetOf.get(targetId), { rowId, ordinal }) ? [targetId] : [])));
+  const stopsOf = (list: StoredStop[]) => list.flatMap((stop) => stopOf(stop, { ground, target: targetOf.get(stop.targetId), zone: zoneOfTarget.get(stop.targetId) ?? 0, atReserve }));
   return {
     id: round.id, planId: plan.id, planName: plan.name, blockId: block.id, blockName: block.name, estateName: estate.name,
     onDate: round.onDate, state: round.state, gate: round.gate, notes: round.notes,
@@ -59,6 +60,7 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
     others: me ? shares.filter((share) => share.personId !== personId).map((share) => ({ id: share.personId, name: people.find(({ id }) => id === share.personId)?.name ?? '', stops: stopsOf(share.stops) })) : [],
     received: readings.filter((reading) => reading.personId === personId).map(({ id, targetId, measureCode, value }) => ({ id, targetId, measureCode, value, zone: targetId === null ? 0 : zoneOfTarget.get(targetId) ?? 0 })),
     doneTargetIds: [...new Set(readings.flatMap(({ targetId }) => (targetId === null ? [] : [targetId])))],
+    readAsks: readings.flatMap(({ targetId, measureCode }) => (targetId === null ? [] : [{ targetId, measureCode }])),
     safety: safetyOf(estate),
     restrictions: await restrictionViews(estateId, await EntryRestriction.query().where({ estateId, blockId: block.id }).where('endsAt', '>', now).orderBy('endsAt', 'desc'), now),
     lifters: (await peopleWhoMay(undefined, estateId, 'restrictions.lift')).map(({ name }) => name),
@@ -100,7 +102,10 @@ function placeOf({ vines, block }: BlockVines, index: number): [number, number] 
 }
 
 /** A stop with the vine's words; a vine whose row has gone since is left out of the walk. */
-function stopOf(stop: StoredStop, { ground, target, zone }: { ground: BlockVines; target: Target | undefined; zone: number }): WalkStop[] {
+/** Whether a vine is the reserve of a target; where vines were renumbered since, identities still say so. */
+const isReserveOf = (target: Target | undefined, vine: { rowId: string | null; ordinal: number | null }): boolean => target !== undefined && target.reserveRowId !== null && target.reserveRowId === vine.rowId && target.reserveOrdinal === vine.ordinal;
+
+function stopOf(stop: StoredStop, { ground, target, zone, atReserve }: { ground: BlockVines; target: Target | undefined; zone: number; atReserve: ReadonlySet<string> }): WalkStop[] {
   const index = target ? ground.rowIndexOf.get(target.rowId) : undefined;
   if (!target || index === undefined) return [];
   const { targetId, number, enterBy, heading, ahead, aheadFrom, opensZone } = stop;
@@ -111,5 +116,6 @@ function stopOf(stop: StoredStop, { ground, target, zone }: { ground: BlockVines
     drawOrder: target.drawOrder,
     measures: target.measureCodes,
     reserve: target.reserveRowId === null || target.reserveOrdinal === null ? null : vineWords(ground, target.reserveRowId, target.reserveOrdinal),
+    ...(atReserve.has(targetId) ? { atReserve: true } : {}),
   }];
 }

@@ -59,10 +59,13 @@ async function start(): Promise<void> {
     // A new program takes over only an empty outbox: what waits was written by the old one, and goes with it.
     const loadWhenSent = async (): Promise<void> => {
       const waiting = session.person ? await orNothing(totalWaiting(session.person.id), 0) : 0;
-      if (waiting > 0) useNoticesStore().say(i18n.global.t('field.updateWaits', { n: waiting }, waiting), { kind: 'stop' });
-      else load();
+      if (waiting === 0) return load();
+      useNoticesStore().say(i18n.global.t('field.updateWaits', { n: waiting }, waiting), { kind: 'stop' });
+      offer();
     };
-    useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: () => void loadWhenSent() } });
+    // Pressed too early it stands there still for later.
+    const offer = (): number => useNoticesStore().say(i18n.global.t('frame.newVersion'), { kind: 'news', stays: true, act: { label: i18n.global.t('frame.loadNewVersion'), run: () => void loadWhenSent() } });
+    offer();
   });
 }
 

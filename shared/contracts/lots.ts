@@ -129,7 +129,7 @@ export const newLot = z.object({ name: shortName, wineType: wineType.default('re
 export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable(), crew: z.string().trim().max(200), alcoholMethod: z.enum(brixMethods).nullable() }).partial();
 
 /** The whole new content of a lot: zones of any block, each whole or by rows. */
-export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200) });
+export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200).refine((parts) => new Set(parts.map(({ zoneId }) => zoneId)).size === parts.length, 'A zone stands there twice; name each once, with all its rows.') });
 
 /** What one lot holds of a zone goes into another. */
 export const zoneMove = z.object({ zoneId: id, fromLotId: id, fromVersion: z.number().int(), toLotId: id, toVersion: z.number().int() });

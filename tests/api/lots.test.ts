@@ -102,6 +102,8 @@ describe('a pick lot', () => {
     expect(answer.status).toBe(409);
     expect(answer.body.detail).toMatch(/Shelf red/);
     expect((await board()).lots.find((lot) => lot.id === other)!.lines).toEqual([]);
+    const twice = await setParts(other, 1, [{ zoneId: two.zoneIds[0] }, { zoneId: two.zoneIds[0] }]);
+    expect([twice.status, twice.body.detail]).toEqual([422, expect.stringMatching(/A zone stands there twice/)]);
   });
 
   it('is kept from a vine twice by the database itself', async () => {

@@ -32,6 +32,7 @@ export const fr: Record<string, string> = {
   'Give the name.': 'Donnez le nom.',
   'Give your name.': 'Donnez votre nom.',
   'Litres must be above 0.': 'Les litres doivent être au-dessus de 0.',
+  'A zone stands there twice; name each once, with all its rows.': 'Une zone y figure deux fois ; nommez chacune une fois, avec tous ses rangs.',
   'The least fill must be below the fill allowed.': 'Le remplissage minimal doit être au-dessous du remplissage admis.',
   'Name the laboratory, so that its next file is read the same way.': 'Indiquez le laboratoire, pour que son prochain fichier soit lu de la même façon.',
   'Name the product.': 'Indiquez le produit.',

@@ -32,6 +32,7 @@ export const it: Record<string, string> = {
   'Give the name.': 'Dare il nome.',
   'Give your name.': 'Dare il proprio nome.',
   'Litres must be above 0.': 'I litri devono essere sopra 0.',
+  'A zone stands there twice; name each once, with all its rows.': 'Una zona c’è due volte; nominarle una volta sola, con tutti i loro filari.',
   'The least fill must be below the fill allowed.': 'Il riempimento minimo deve essere sotto il riempimento ammesso.',
   'Name the laboratory, so that its next file is read the same way.': 'Indicare il laboratorio, così il suo prossimo file si legge allo stesso modo.',
   'Name the product.': 'Indicare il prodotto.',

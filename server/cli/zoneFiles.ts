@@ -6,12 +6,9 @@ import { readOutline } from '../../shared/geo/outline.ts';
 import type { RasterReadOptions } from '../importers/raster/describeRaster.ts';
 import type { ImportAnswers, ImportQuestion } from '../importers/understood.ts';
 import { BadInput } from './zoneArguments.ts';
+import { requireFile } from './zonePaths.ts';
 
-/** What every file of the command line goes through: is it there, what lies beside it, what does it leave open. */
-
-export function requireFile(path: string, option: string): void {
-  if (!existsSync(path) || !statSync(path).isFile()) throw new BadInput(`${option}: the file ${path} does not exist; check its name and folder.`);
-}
+/** What every file of the command line goes through: what lies beside it, what does it leave open. */
 
 /** Read options from the options of a layer, with the world file and projection file that lie beside a picture. */
 export function readOptionsFor(path: string, options: Readonly<Record<string, string>>, nearLonLat: LonLat | null): RasterReadOptions {

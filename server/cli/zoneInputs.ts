@@ -1,7 +1,7 @@
 import { statSync } from 'node:fs';
-import { openSecondThread, type SecondThread } from '../workers/secondThread.ts';
+import type { SecondThread } from '../workers/secondThread.ts';
 import type { LayerArgument, ZoneArguments } from './zoneArguments.ts';
-import { requireFile, type Block } from './zoneFiles.ts';
+import type { Block } from './zoneFiles.ts';
 import { formatOf, readLayer } from './zoneLayers.ts';
 import { readTasks, type FilesRead, type FileTasks, type PartRead } from './zonePart.ts';
 
@@ -17,12 +17,6 @@ export interface InputsRead extends Omit<FilesRead, 'seconds'> {
 
 /** A smaller picture is read before another thread has opened it. */
 const LARGE_BYTES = 2e6;
-
-/** Opened before the block is read, so that the thread has loaded its readers by then. Null when the program runs from its source. */
-export function openBeside({ layers }: ZoneArguments): SecondThread | null {
-  for (const layer of layers) requireFile(layer.path, `--layer ${layer.id}`);
-  return openSecondThread();
-}
 
 export async function readInputs(block: Block, { layers, layerWeights, readingsPath }: ZoneArguments, beside: SecondThread | null): Promise<InputsRead> {
   const ordered = bySize(layers);

@@ -15,7 +15,8 @@ import { sniffFormat } from '../importers/sniffFormat.ts';
 import type { PictureSums, SharedPicture } from '../importers/raster/readRasterOntoGrids.ts';
 import type { VectorUnderstood } from '../importers/understood.ts';
 import { BadInput, weightOf, type LayerArgument } from './zoneArguments.ts';
-import { readOptionsFor, requireAnswered, requireFile, type Block } from './zoneFiles.ts';
+import { readOptionsFor, requireAnswered, type Block } from './zoneFiles.ts';
+import { requireFile } from './zonePaths.ts';
 
 /** Layers of the command line onto the block's grid: pictures, maps of areas, points. Readers are loaded when needed. */
 

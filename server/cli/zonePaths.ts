@@ -2,6 +2,11 @@ import { accessSync, constants, existsSync, realpathSync, statSync } from 'node:
 import { basename, dirname, join, resolve } from 'node:path';
 import { BadInput, type ZoneArguments } from './zoneArguments.ts';
 
+/** Throws BadInput. */
+export function requireFile(path: string, option: string): void {
+  if (!existsSync(path) || !statSync(path).isFile()) throw new BadInput(`${option}: the file ${path} does not exist; check its name and folder.`);
+}
+
 /** Whether the results can be written, looked at before minutes of work and so that nothing that was given is lost. Throws BadInput. */
 export function requireResultPaths({ outPath, reportPath, blockPath, layers, readingsPath }: ZoneArguments): void {
   const given = new Map([['--block', blockPath], ...layers.map(({ id, path }) => [`--layer ${id}`, path] as const), ...(readingsPath === null ? [] : [['--readings', readingsPath] as const])]);

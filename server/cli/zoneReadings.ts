@@ -3,7 +3,8 @@ import type { ZoningReadings } from '../../shared/analysis/zoningTypes.ts';
 import { toUtmNear } from '../../shared/geo/utmNear.ts';
 import { readPoints } from '../importers/points/readPoints.ts';
 import { BadInput } from './zoneArguments.ts';
-import { readOptionsFor, requireAnswered, requireFile, type Block } from './zoneFiles.ts';
+import { readOptionsFor, requireAnswered, type Block } from './zoneFiles.ts';
+import { requireFile } from './zonePaths.ts';
 
 /** Columns that say where and when a reading was taken; every other column of numbers is a measure. */
 const notMeasures = /^(date|day|year|season|row|vine|plant|position|block|point|id|.*_id|sample.*|n|number|no)$/i;

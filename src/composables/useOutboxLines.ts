@@ -1,12 +1,12 @@
 import { computed, type ComputedRef } from 'vue';
 import { useI18n } from 'vue-i18n';
-import { spellLabelCode } from '../../../shared/field/labelCode.ts';
-import { useFormat } from '../../composables/useFormat.ts';
-import { useMeasureName } from '../../composables/useMeasureName.ts';
-import { useRefusalWords } from '../../composables/useRefusalWords.ts';
-import { useFieldStore } from '../../stores/field.ts';
-import type { Entry, KeptBag, KeptPhoto } from '../../offline/fieldDatabase.ts';
-import type { IconName } from '../base/iconPaths.ts';
+import { spellLabelCode } from '../../shared/field/labelCode.ts';
+import { useFormat } from './useFormat.ts';
+import { useMeasureName } from './useMeasureName.ts';
+import { useRefusalWords } from './useRefusalWords.ts';
+import { useFieldStore } from '../stores/field.ts';
+import type { Entry, KeptBag, KeptPhoto } from '../offline/fieldDatabase.ts';
+import type { IconName } from '../components/base/iconPaths.ts';
 
 /** Something that was typed, closed or taken with this phone. */
 export interface OutboxLine {

@@ -30,6 +30,7 @@ export function resumableUpload(file: File, endpoint: string, handlers: Resumabl
   let upload: Upload | null = null;
   let isPaused = false;
   let timer: ReturnType<typeof setTimeout> | undefined;
+  let last = 0;
   let reject: (error: unknown) => void = () => undefined;
 
   const goOn = () => {
@@ -60,7 +61,9 @@ export function resumableUpload(file: File, endpoint: string, handlers: Resumabl
         },
         onShouldRetry: (error) => mayPass(error),
         onProgress: (sent) => {
-          handlers.onWaiting(false);
+          // Each new try tells where it begins: only bytes that went out say that the line is back.
+          if (navigator.onLine && sent !== last) handlers.onWaiting(false);
+          last = sent;
           handlers.onProgress(sent);
         },
         onError: (error) => {

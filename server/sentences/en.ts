@@ -96,7 +96,7 @@ export const en = {
   lotHasTickets: 'The lot "{lot}" has scale tickets, corrected since. Tickets are kept, so it cannot be deleted: give it other zones or another name.',
   notOfSeason: '{day} lies outside season {season}, whose fruit comes in from {from} to {to} at the latest. Check the year.',
   tableQuestions: 'Answer what is asked about the table first; nothing was kept.',
-  tableProblems: '{n} lines of the table cannot be used; nothing was kept. Correct them and read it again.',
+  tableProblems: '{n} line of the table cannot be used; nothing was kept. Correct it and read the table again. | {n} lines of the table cannot be used; nothing was kept. Correct them and read the table again.',
   splitSum: 'The split adds up to {sum} kg, the net weight is {netKg} kg. A split leaves the total as it is: change a part.',
   measureNameTaken: 'There is a measure with the name "{name}" already. Choose another name.',
   invitationAcceptedSignIn: 'This invitation has been accepted already. The person can sign in.',

@@ -97,7 +97,7 @@ export const es: Record<SentenceKey, string> = {
   lotHasTickets: 'El lote «{lot}» tiene boletines de pesaje, corregidos después. Los boletines se guardan, así que no se puede borrar: dele otras zonas u otro nombre.',
   notOfSeason: 'El {day} queda fuera de la campaña {season}, cuya uva entra del {from} al {to} a más tardar. Revise el año.',
   tableQuestions: 'Responda antes a lo que se pregunta sobre la tabla; no se guardó nada.',
-  tableProblems: '{n} líneas de la tabla no se pueden usar; no se guardó nada. Corríjalas y léala otra vez.',
+  tableProblems: '{n} línea de la tabla no se puede usar; no se guardó nada. Corríjala y lea la tabla otra vez. | {n} líneas de la tabla no se pueden usar; no se guardó nada. Corríjalas y lea la tabla otra vez.',
   splitSum: 'El reparto suma {sum} kg y el peso neto es {netKg} kg. Un reparto deja el total como está: cambie una parte.',
   measureNameTaken: 'Ya hay una medida con el nombre «{name}». Elija otro nombre.',
   invitationAcceptedSignIn: 'Esta invitación ya se ha aceptado. La persona puede iniciar sesión.',

@@ -97,7 +97,7 @@ export const pt: Record<SentenceKey, string> = {
   lotHasTickets: 'O lote «{lot}» tem talões de pesagem, corrigidos depois. Os talões guardam-se, por isso não pode ser apagado: dê-lhe outras zonas ou outro nome.',
   notOfSeason: 'O dia {day} fica fora da campanha {season}, cuja uva entra de {from} a {to} o mais tardar. Verifique o ano.',
   tableQuestions: 'Responda primeiro ao que se pergunta sobre a tabela; nada foi guardado.',
-  tableProblems: '{n} linhas da tabela não podem ser usadas; nada foi guardado. Corrija-as e leia-a de novo.',
+  tableProblems: '{n} linha da tabela não pode ser usada; nada foi guardado. Corrija-a e leia a tabela de novo. | {n} linhas da tabela não podem ser usadas; nada foi guardado. Corrija-as e leia a tabela de novo.',
   splitSum: 'A repartição soma {sum} kg e o peso líquido é {netKg} kg. Uma repartição deixa o total como está: altere uma parte.',
   measureNameTaken: 'Já existe uma medida com o nome «{name}». Escolha outro nome.',
   invitationAcceptedSignIn: 'Este convite já foi aceite. A pessoa pode iniciar sessão.',

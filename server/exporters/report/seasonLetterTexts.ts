@@ -65,7 +65,7 @@ export const seasonLetterTexts = {
     error: 'L’essentiel de l’écart vient de {part} ({tonnes}).',
     part: { vines: 'le compte de ceps', clusters: 'le compte de grappes', clusterWeight: 'le poids de grappe', growth: 'le facteur de croissance', losses: 'les pertes', rest: 'ce qui n’a pas été remesuré et ne peut être séparé' },
     differ: '{measure} différait entre zones de {difference} : plus que le hasard n’explique.',
-    same: '{measure} n’a pu être distingué entre zones ({difference}).',
+    same: '{measure} ne se distingue pas d’une zone à l’autre ({difference}).',
     measure: { brix: 'Le sucre', ph: 'Le pH', ta: 'L’acidité', yield: 'Le rendement attendu', weighed: 'Le rendement pesé' },
     verdict: {
       keep: 'Gardez les zones et éprouvez-les encore la campagne prochaine.',
@@ -92,7 +92,7 @@ export const seasonLetterTexts = {
     error: 'Gran parte della differenza viene da {part} ({tonnes}).',
     part: { vines: 'il conteggio delle viti', clusters: 'il conteggio dei grappoli', clusterWeight: 'il peso del grappolo', growth: 'il fattore di crescita', losses: 'le perdite', rest: 'ciò che non è stato rimisurato e non si può separare' },
     differ: '{measure} differiva tra le zone di {difference}: più di quanto spieghi il caso.',
-    same: '{measure} non si è potuto distinguere tra le zone ({difference}).',
+    same: '{measure} non si distingue da una zona all’altra ({difference}).',
     measure: { brix: 'Lo zucchero', ph: 'Il pH', ta: 'L’acidità', yield: 'La resa attesa', weighed: 'La resa pesata' },
     verdict: {
       keep: 'Tenere le zone e riprovarle la prossima stagione.',

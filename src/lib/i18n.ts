@@ -10,7 +10,10 @@ export const languageNames: Readonly<Record<Language, string>> = { en: 'English'
 // Texts are found by name so that a new feature brings its own files and touches no list; code never is.
 const files = import.meta.glob<{ default: Record<string, unknown> }>('../locales/*/*.json');
 
-export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false });
+/** A date that ends in a stop of its own ("22 nov.") ends its sentence as well. */
+const oneStop = <Text>(text: Text): Text => (typeof text === 'string' ? (text.replace(/(?<=\p{L})\.\.(?=\s|$)/gu, '.') as Text) : text);
+
+export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: oneStop });
 
 /** What the phone in the row and the door need; the office's texts come with its first screen. vite.config.ts makes one chunk of each. */
 const phoneFeatures: ReadonlySet<string> = new Set(['base', 'conflicts', 'door', 'field', 'frame', 'measures', 'problem', 'rowstrip', 'safety']);

@@ -73,5 +73,6 @@ describe('ripeness as it was known', () => {
     const long = await app.knex('weather_days').where({ estateId: estate.estateId }).count();
     expect(Number(long[0]!.count)).toBe(1);
     expect((await shown(dayAgo(10))).heat).toBeNull();
+    expect((await shown('2066-01-01')).heat).toEqual((await shown()).heat);
   });
 });

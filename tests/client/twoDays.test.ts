@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import type { RipeningSeries, RipeningView } from '../../shared/contracts/results.ts';
 import { fitTrend } from '../../shared/ripening/trend.ts';
 import TwoDays from '../../src/components/ripeness/TwoDays.vue';
+import { i18n, showLanguage } from '../../src/lib/i18n.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 const brix = { code: 'brix', name: 'Sugar', unit: '°Brix', decimals: 1, marginKind: 'absolute', margin: 0.5, confidence: 0.95, secondsPerSample: 60 } as const;
@@ -52,6 +53,14 @@ describe('one day or the other', () => {
     const mixed = seriesOf([0, 7, 14, 21], [20, 21, 22, 23], { otherWay: 2 });
     expect(await said(mixed)).toContain('2 visits so far; it takes 3.');
     expect(await said({ ...worked, sd: null })).toContain('One reading on the last visit says nothing of the spread.');
+  });
+
+  it('ends a sentence with one stop where the date has its own', async () => {
+    await mountWithTexts(TwoDays, { language: 'fr', props: { view: { zones: [], series: [worked] }, measure: brix, target: null } as never });
+    const said = i18n.global.t('ripeness.visit', { day: '22 nov.' });
+    expect(said).toMatch(/22 nov\.$/);
+    expect(said).not.toContain('..');
+    await showLanguage('en');
   });
 
   it('takes days after the last visit only', async () => {

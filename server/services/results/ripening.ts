@@ -50,7 +50,8 @@ export async function blockRipening(access: Access, blockId: string, options: Ri
   const loaded = basis === 'in' ? all : { ...all, readings: all.readings.filter(({ state }) => state !== 'provisional') };
   const results = viewResults(loaded);
   const weather = await weatherUntil(access.estateId, until);
-  const shownOn = options.knownOn ?? options.today;
+  // Nothing is known of days ahead.
+  const shownOn = options.knownOn && options.knownOn < options.today ? options.knownOn : options.today;
   const isOver = await isSeasonOver(access.estateId, season, shownOn);
   const made = loaded.measures.flatMap((measure) =>
     results.zones.map((zone) => seriesOf(measure, { zone: zone.number, values: results.values, readings: loaded.readings, isOver })).filter((made) => made !== null),

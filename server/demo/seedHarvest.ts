@@ -12,6 +12,8 @@ import { setRestriction } from '../services/restrictions.ts';
 import { importWeather } from '../services/weather/weather.ts';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { LotHistory } from '../models/LotHistory.ts';
+import { WeatherDayRecord } from '../models/WeatherDayRecord.ts';
+import { WeatherHistory } from '../models/WeatherHistory.ts';
 import type { DemoDays } from './demoDays.ts';
 import type { DemoPlace } from './demoPlace.ts';
 import type { DemoEstate } from './seedEstate.ts';
@@ -21,6 +23,9 @@ export async function seedHarvest(made: DemoEstate, options: { days: DemoDays; p
   const { days, place, now } = options;
   const access: Access = { estateId: made.estateId, personId: made.personOf('winemaker'), roles: ['winemaker'] };
   await importWeather({ ...access, personId: made.personOf('agronomist'), roles: ['agronomist'] }, { text: stationTable(days, place), dateOrder: null, decimalMark: null, units: null, apply: true }, now);
+  // A station's day is known on the next one, so that an earlier day can be shown with its weather.
+  await WeatherDayRecord.query().where({ estateId: made.estateId }).patch({ enteredAt: WeatherDayRecord.raw('(day + 1)::timestamptz') as never });
+  await WeatherHistory.query().where({ estateId: made.estateId }).delete();
   await setCapacity(access, { day: null, pickT: 42, pressT: 12, note: '' });
   const lot = await Lot.query().findOne({ estateId: made.estateId, seasonId: made.seasons[0]!.id, name: 'First white' });
   if (!lot) return;

@@ -42,11 +42,12 @@ async function buildProgram() {
           output: { entryFileNames: '[name].mjs', chunkFileNames: '[name].mjs' },
         },
       },
-      ssr: { noExternal: true },
+      // It looks for its WebAssembly beside its own file.
+      ssr: { noExternal: true, external: ['sql.js'] },
     });
     const own = output.flatMap(({ moduleIds = [] }) => moduleIds).filter((id) => id.startsWith(root) && !id.includes('node_modules'));
     const sources = [...new Set(own)].map((id) => path.relative(root, id)).sort();
-    writeFileSync(path.join(draft, 'sources.json'), JSON.stringify(['package-lock.json', ...sources]));
+    writeFileSync(path.join(draft, 'sources.json'), JSON.stringify(['package-lock.json', 'scripts/zone.mjs', ...sources]));
     rmSync(folder, { recursive: true, force: true });
     renameSync(draft, folder);
   });

@@ -1,5 +1,6 @@
 import { existsSync, readFileSync, statSync } from 'node:fs';
 import { basename } from 'node:path';
+import type { Position } from 'geojson';
 import { defineGrid, type Grid } from '../../shared/analysis/grid.ts';
 import type { LonLat, MultiPolygonLonLat, PolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { readOutline } from '../../shared/geo/outline.ts';
@@ -66,8 +67,17 @@ export interface Block {
 export async function readBlock(path: string, cellSizeM: number): Promise<Block> {
   requireFile(path, '--block');
   const areas = plainAreas(path) ?? (await areasByReader(path));
-  const { polygons } = readOutline({ type: 'MultiPolygon', coordinates: areas as unknown as MultiPolygonLonLat });
+  const asDrawn = readOutline({ type: 'MultiPolygon', coordinates: areas as unknown as MultiPolygonLonLat });
+  const polygons = asDrawn.polygons.length < 2 ? asDrawn.polygons : readOutline({ type: 'MultiPolygon', coordinates: await united(asDrawn.polygons) }).polygons;
   return { grid: defineGrid(polygons, cellSizeM), middleLonLat: polygons[0]![0]![0]! };
+}
+
+/** Areas that touch or overlap become one: neighbours with a border between them are no outline to walk around. */
+async function united(areas: MultiPolygonLonLat): Promise<Position[][][]> {
+  // Loaded only when needed: it is large, and most blocks are one area.
+  const { featureCollection, polygon, union } = await import('@turf/turf');
+  const whole = union(featureCollection(areas.map((rings) => polygon(rings.map((ring) => ring.map(([lon, lat]) => [lon, lat]))))))!.geometry;
+  return whole.type === 'Polygon' ? [whole.coordinates] : whole.coordinates;
 }
 
 /** Areas of a plain GeoJSON file, which needs no reader; null for anything else, which then gets the full treatment. */

@@ -1,7 +1,8 @@
+import { bbox, bboxClip } from '@turf/turf';
 import { existsSync, mkdirSync, mkdtempSync, readFileSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import type { FeatureCollection, MultiPolygon } from 'geojson';
+import type { FeatureCollection, MultiPolygon, Polygon } from 'geojson';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { signedArea } from '../../shared/geo/rings.ts';
 import { readArguments } from '../../server/cli/zoneArguments.ts';
@@ -65,6 +66,16 @@ describe('the zoning command', () => {
     const report = JSON.parse(readFileSync(join(folder, 'two.json'), 'utf8'));
     expect(report.zonesChosen).toBe(2);
     expect(report.weights).toEqual([{ layerId: 'ndvi', weight: 1 }, { layerId: 'elevation', weight: 0.5 }, { layerId: 'slope', weight: 0 }]);
+  });
+
+  it('takes parts that touch as one block', async () => {
+    const { features } = JSON.parse(readFileSync(join(folder, 'block.geojson'), 'utf8')) as FeatureCollection<Polygon>;
+    const [west, south, east, north] = bbox(features[0]!) as [number, number, number, number];
+    const middle = (west + east) / 2;
+    const parts = ([[west, south, middle, north], [middle, south, east, north]] as const).map((box) => bboxClip(features[0]!, [...box]));
+    writeFileSync(join(folder, 'parts.geojson'), JSON.stringify({ type: 'FeatureCollection', features: parts }));
+    const made = await zone('--block', 'parts.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--zones', '2', '--cell', '4', '--out', 'parts-zones.geojson');
+    expect(made).toMatchObject({ exitCode: 0, line: expect.stringContaining('2 zones on 2.00 ha') });
   });
 
   it('spreads points by inverse distance, or by kriging where it is asked for', async () => {

@@ -1,11 +1,14 @@
 import { spawnSync } from 'node:child_process';
-import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
+import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
+import type { FeatureCollection, MultiPolygon } from 'geojson';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { finishZoning, makeZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { doBeside } from '../../server/cli/zoneBeside.ts';
 import { runZoneCommand } from '../../server/cli/zoneCommand.ts';
+import { geoPackageOf } from '../../server/exporters/features/geoPackage.ts';
 import { readRasterOntoGrids, readSharedRows, type PictureSums } from '../../server/importers/raster/readRasterOntoGrids.ts';
 import { layersOf } from '../bench/judgedPanel.ts';
 import { writeCase, type WrittenCase } from '../bench/simulatedFiles.ts';
@@ -79,5 +82,12 @@ describe('the built program, which runs in two threads', () => {
       expect(status, stderr).toBe(0);
       expect(readFileSync(at(out), 'utf8')).toBe(readFileSync(at('one.geojson'), 'utf8'));
     }
+    // A GeoPackage is read in WebAssembly that lies beside its library.
+    const [block] = (JSON.parse(readFileSync(at('block.geojson'), 'utf8')) as FeatureCollection<MultiPolygon>).features;
+    const feature = { values: ['Home'], shape: { kind: 'polygons', polygonsLonLat: block!.geometry.coordinates as unknown as MultiPolygonLonLat } } as const;
+    writeFileSync(at('block.gpkg'), await geoPackageOf([{ name: 'block', title: 'Block', fields: [{ name: 'name', type: 'text' }], features: [feature], madeAt: new Date(0) }]));
+    const { status, stderr } = spawnSync(process.execPath, [program, ...args('three.geojson').map((word) => word.replace(/block\.geojson$/, 'block.gpkg'))], { encoding: 'utf8' });
+    expect(status, stderr).toBe(0);
+    expect(readFileSync(at('three.geojson'), 'utf8')).toBe(readFileSync(at('one.geojson'), 'utf8'));
   });
 });

@@ -27,7 +27,7 @@ export interface Split {
 export function splitWalk(input: SplitInput): Split {
   const { targetCount, people, evenness = 1.15 } = input;
   if (!Number.isInteger(people) || people < 1) throw new AnalysisError('bad-count', `A walk cannot be shared among ${people} people; give a whole number from 1.`);
-  if (people > targetCount) throw new AnalysisError('too-many-people', `${targetCount} targets cannot be shared among ${people} people; send at most ${targetCount}.`);
+  if (people > targetCount) throw new AnalysisError('too-many-people', `Vines of the walk: ${targetCount}; people: ${people}; send at most ${targetCount}.`);
   const loadOf = remembered(input.loadOf);
   const cuts = leastLargest({ ...input, loadOf });
   const loads = loadsOf(cuts, targetCount, loadOf);

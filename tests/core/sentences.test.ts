@@ -103,6 +103,7 @@ describe('refusals in the language of whoever asked', () => {
     const said = [
       'There is no measure "clusterCount" in use in this estate. Choose another or add it.',
       'The spread between clusters of a vine (2.5) leaves nothing between vines (1.05 in all). Enter a smaller one, or say that more clusters were taken then.',
+      'Vines of the walk: 1; people: 3; send at most 1.',
       'Some targets cannot be reached from the start without crossing a row; open a headland or list a gap.',
     ];
     for (const sentence of said) for (const language of ['fr', 'es', 'it', 'pt'] as const) expect(computationWords(language, sentence), language).not.toBe(sentence);

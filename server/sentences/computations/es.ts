@@ -69,4 +69,5 @@ export const es: Record<string, string> = {
   'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Hay más de {1} pasos entre hileras uno al lado del otro; indique menos.',
   'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'El inicio o el final del recorrido está en una cabecera cerrada junto a la calle {1}; muévalo o abra la cabecera.',
   'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'No se puede buscar el mejor orden de {1} parcelas; dé usted el orden, o planifique como mucho {2} a la vez.',
+  'Vines of the walk: {1}; people: {2}; send at most {3}.': 'Cepas del recorrido: {1}; personas: {2}; envíe como mucho {3}.',
 };

@@ -69,4 +69,5 @@ export const fr: Record<string, string> = {
   'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Plus de {1} passages dans les rangs se trouvent côte à côte ; indiquez-en moins.',
   'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'Le départ ou la fin du parcours se trouve sur une tournière fermée à côté de l’interrang {1} ; déplacez-le ou ouvrez la tournière.',
   'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'Le meilleur ordre de {1} parcelles ne peut être cherché ; donnez l’ordre, ou planifiez-en au plus {2} à la fois.',
+  'Vines of the walk: {1}; people: {2}; send at most {3}.': 'Ceps du parcours : {1} ; personnes : {2} ; envoyez-en au plus {3}.',
 };

@@ -69,4 +69,5 @@ export const it: Record<string, string> = {
   'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Più di {1} varchi tra i filari stanno uno accanto all’altro; ne indichi meno.',
   'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'La partenza o la fine del percorso è su una capezzagna chiusa accanto all’interfila {1}; la sposti o apra la capezzagna.',
   'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'L’ordine migliore di {1} appezzamenti non si può cercare; dia l’ordine, o ne pianifichi al massimo {2} per volta.',
+  'Vines of the walk: {1}; people: {2}; send at most {3}.': 'Ceppi del percorso: {1}; persone: {2}; ne mandi al massimo {3}.',
 };

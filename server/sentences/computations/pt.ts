@@ -69,4 +69,5 @@ export const pt: Record<string, string> = {
   'More than {1} ways through the rows lie side by side; list fewer gaps.': 'Há mais de {1} passagens entre linhas lado a lado; indique menos.',
   'The start or end of the walk lies on a headland that is shut beside alley {1}; move it or open the headland.': 'O início ou o fim do percurso está numa cabeceira fechada junto da entrelinha {1}; mude-o ou abra a cabeceira.',
   'The best order of {1} blocks cannot be searched; give the order, or plan at most {2} at once.': 'Não se pode procurar a melhor ordem de {1} parcelas; dê a ordem, ou planeie no máximo {2} de cada vez.',
+  'Vines of the walk: {1}; people: {2}; send at most {3}.': 'Cepas do percurso: {1}; pessoas: {2}; envie no máximo {3}.',
 };

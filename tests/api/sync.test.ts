@@ -20,7 +20,7 @@ afterAll(() => app.close());
 
 async function stored(): Promise<StoredReading[]> {
   const { rows } = (await app.knex.raw(
-    `select r.id, r.target_id as "targetId", r.person_id as "personId", r.value, r.excluded_reason is null and not exists (select 1 from readings c where c.supersedes = r.id) as counts from readings r where r.estate_id = ?`,
+    `select r.id, r.target_id as "targetId", r.person_id as "personId", r.value, r.supersedes, r.excluded_reason is null and not exists (select 1 from readings c where c.supersedes = r.id) as counts from readings r where r.estate_id = ?`,
     [made.estateId],
   )) as { rows: StoredReading[] };
   return rows;

@@ -50,7 +50,7 @@ export interface SyncRunResult {
   lost: number;
   /** Readings that count beyond the one a person made of a vine, and that no card lists. */
   doubled: number;
-  /** Vines of two people without a card, and cards on which nothing differs. */
+  /** Vines of two people without a card, and cards on which nothing ever differed: a card names what stands today, and a correction may have settled the difference that opened it. */
   conflictsMissing: number;
   conflictsInvented: number;
 }
@@ -124,6 +124,8 @@ export interface StoredReading {
   targetId: string;
   personId: string;
   value: number;
+  /** The reading that this one corrects. */
+  supersedes: string | null;
   /** Not corrected by another and not left out. */
   counts: boolean;
 }
@@ -143,6 +145,12 @@ function compare(taps: readonly Tap[], stored: readonly StoredReading[], cards: 
   return {
     lost, doubled,
     conflictsMissing: shared.filter((id) => !carded.has(id)).length,
-    conflictsInvented: cards.filter((ids) => new Set(ids.map((id) => `${byId.get(id)!.personId} ${byId.get(id)!.value}`)).size < 2).length,
+    conflictsInvented: cards.filter((ids) => ids.length < 2 || new Set(ids.flatMap((id) => chain(byId, id)).map(({ personId, value }) => `${personId} ${value}`)).size < 2).length,
   };
+}
+
+/** A reading and all that it corrects. */
+function chain(byId: ReadonlyMap<string, StoredReading>, id: string): StoredReading[] {
+  const reading = byId.get(id)!;
+  return [reading, ...(reading.supersedes === null ? [] : chain(byId, reading.supersedes))];
 }

@@ -97,7 +97,7 @@ export const fr: Record<SentenceKey, string> = {
   lotHasTickets: 'Le lot « {lot} » a des bons de pesée, corrigés depuis. Les bons se gardent, il ne peut donc être supprimé : donnez-lui d’autres zones ou un autre nom.',
   notOfSeason: 'Le {day} est hors de la campagne {season}, dont la récolte rentre du {from} au {to} au plus tard. Vérifiez l’année.',
   tableQuestions: 'Répondez d’abord aux questions sur le tableau ; rien n’a été gardé.',
-  tableProblems: 'Lignes du tableau inutilisables : {n}. Rien n’a été gardé. Corrigez-les et faites relire le tableau.',
+  tableProblems: '{n} ligne du tableau est inutilisable ; rien n’a été gardé. Corrigez-la et faites relire le tableau. | {n} lignes du tableau sont inutilisables ; rien n’a été gardé. Corrigez-les et faites relire le tableau.',
   splitSum: 'La répartition fait {sum} kg, le poids net est de {netKg} kg. Une répartition laisse le total tel quel : changez une part.',
   measureNameTaken: 'Il y a déjà une mesure nommée « {name} ». Choisissez un autre nom.',
   invitationAcceptedSignIn: 'Cette invitation a déjà été acceptée. La personne peut se connecter.',

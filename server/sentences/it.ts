@@ -97,7 +97,7 @@ export const it: Record<SentenceKey, string> = {
   lotHasTickets: 'Il lotto «{lot}» ha bollette di pesata, corrette in seguito. Le bollette si conservano, quindi non si può eliminare: dargli altre zone o un altro nome.',
   notOfSeason: 'Il {day} è fuori dalla stagione {season}, la cui uva entra dal {from} al {to} al più tardi. Verificare l’anno.',
   tableQuestions: 'Rispondere prima alle domande sulla tabella; nulla è stato tenuto.',
-  tableProblems: 'Righe della tabella che non si possono usare: {n}. Nulla è stato tenuto. Correggerle e far rileggere la tabella.',
+  tableProblems: '{n} riga della tabella non si può usare; nulla è stato tenuto. Correggetela e rileggete la tabella. | {n} righe della tabella non si possono usare; nulla è stato tenuto. Correggetele e rileggete la tabella.',
   splitSum: 'La ripartizione fa {sum} kg, il peso netto è di {netKg} kg. Una ripartizione lascia il totale com’è: cambiare una parte.',
   measureNameTaken: 'C’è già una misura di nome «{name}». Scegliere un altro nome.',
   invitationAcceptedSignIn: 'Questo invito è già stato accettato. La persona può accedere.',

@@ -67,6 +67,9 @@ export default defineConfig({
             { name: 'draw', test: /node_modules[\\/]terra-draw/, priority: 25 },
             { name: 'chart', test: /node_modules[\\/](chart\.js|vue-chartjs|@kurkle)[\\/]/, priority: 25 },
             { name: 'vue', test: /node_modules[\\/](@vue|vue|vue-router|pinia|vue-i18n|@intlify)[\\/]/, priority: 20 },
+            // The crew's first screen with all that it stands on, as one file: on a weak signal two dozen small ones cost a
+            // second and more. Every screen shares most of it, so that the page asks for it at once.
+            { name: 'crew', test: /src[\\/]views[\\/]field[\\/]FieldWorkView/, priority: 10 },
           ],
         },
       },

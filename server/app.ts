@@ -1,3 +1,4 @@
+import { constants } from 'node:zlib';
 import compression from 'compression';
 import connectPgSimple from 'connect-pg-simple';
 import express, { Router, type ErrorRequestHandler, type Express, type Request } from 'express';
@@ -64,7 +65,8 @@ export function makeApp(config: Config, parts: AppParts): Express {
   app.set('trust proxy', config.trustProxy);
   app.disable('x-powered-by');
   app.use(securityHeaders(config));
-  app.use(compression({ filter: (request, response) => !request.path.endsWith('/events') && compression.filter(request, response) }));
+  // One step above the library's choice: a tenth less for a weak signal, for a few milliseconds of ours.
+  app.use(compression({ brotli: { params: { [constants.BROTLI_PARAM_QUALITY]: 5 } }, filter: (request, response) => !request.path.endsWith('/events') && compression.filter(request, response) }));
   app.get('/api/health', (_request, response) => void response.json({ ok: true }));
   app.get('/api/ready', async (_request, response) => {
     const ready = await parts.isReady();

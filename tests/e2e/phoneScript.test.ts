@@ -35,7 +35,7 @@ const sentBytes = (files: Iterable<string>): number => [...files].reduce((sum, f
 function firstScreen(language: string): Set<string> {
   const page = readFileSync(join(client, 'index.html'), 'utf8');
   const own = [...page.matchAll(/(?:src|href)="\/assets\/([\w.-]+\.js)"/gu)].map(([, file]) => file!);
-  return neededBy([...own, chunkOf('FieldWorkView'), chunkOf(`texts-${language}-phone`)]);
+  return neededBy([...own, chunkOf('crew'), chunkOf(`texts-${language}-phone`)]);
 }
 
 describe('the script of the crew’s phone', () => {
@@ -47,6 +47,10 @@ describe('the script of the crew’s phone', () => {
     }
   });
 
+  it('comes in few files, since each costs a weak signal its own way there and back', () => {
+    for (const language of languages) expect(firstScreen(language).size, language).toBeLessThanOrEqual(6);
+  });
+
   it('stays under it with the walk and the bag as well, which are fetched while one reads', () => {
     for (const language of languages) expect(sentBytes([...firstScreen(language), ...neededBy([chunkOf('FieldWalkView'), chunkOf('FieldBagView')])].filter((file, at, all) => all.indexOf(file) === at)), language).toBeLessThan(budgetBytes);
   });
@@ -55,7 +59,7 @@ describe('the script of the crew’s phone', () => {
     const files = [...firstScreen('en'), ...neededBy([chunkOf('FieldWalkView'), chunkOf('FieldBagView')])];
     expect(files.filter((file) => /^(maplibre|chart|draw|decode)-/u.test(file))).toEqual([]);
     const worker = readFileSync(join(client, 'sw.js'), 'utf8');
-    for (const name of ['decode', 'FieldWalkView', 'FieldBagView', 'FieldOutboxView', ...languages.map((language) => `texts-${language}-phone`)]) expect(worker, name).toContain(chunkOf(name));
+    for (const name of ['crew', 'decode', 'FieldWalkView', 'FieldBagView', 'FieldOutboxView', ...languages.map((language) => `texts-${language}-phone`)]) expect(worker, name).toContain(chunkOf(name));
     expect(worker).not.toContain(chunkOf('maplibre'));
   });
 });

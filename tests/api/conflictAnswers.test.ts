@@ -78,7 +78,9 @@ describe('an answer given by mistake', () => {
     expect(await counted()).toEqual(before);
     expect((await Reading.query()).flatMap(({ flags }) => flags)).toEqual([]);
     expect((await cards()).items[0]).toMatchObject({ state: 'open', choice: null, maySettle: true });
-    expect((await AuditEntry.query().where({ subjectId: card!.id }).orderBy('id')).map(({ action }) => action)).toEqual(['conflicts.settle', 'conflicts.reopen']);
+    const vine = { row: made.targets[0]!.rowLabel, vine: made.targets[0]!.vineNumber };
+    const history = await AuditEntry.query().where({ subjectId: card!.id }).orderBy('id');
+    expect(history).toMatchObject([{ action: 'conflicts.settle', subjectName: card!.blockName, after: { at: vine } }, { action: 'conflicts.reopen', subjectName: card!.blockName, after: { at: vine } }]);
     expect(await settle(card!.id, { choice: 'repeat' })).toBe(204);
   });
 

@@ -6,6 +6,7 @@ import { AuditEntry, writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { say } from '../../sentences/say.ts';
+import { conflictPlace } from './conflictPlace.ts';
 import { newestReadings } from './newestReadings.ts';
 import { leftOutReasons, openForSettling, type Settled } from './settleConflict.ts';
 
@@ -15,17 +16,18 @@ import { leftOutReasons, openForSettling, type Settled } from './settleConflict.
  */
 export async function reopenConflict(access: Access, conflictId: string, now: Date): Promise<void> {
   await ReadingConflict.transaction(async (trx) => {
-    const { conflict } = await openForSettling(trx, access, conflictId);
+    const { conflict, readings } = await openForSettling(trx, access, conflictId);
     if (conflict.state !== 'settled') throw new Clash('open', say('conflictOpen'));
     const { choice, settledBy, settledAt } = conflict;
     const entry = await AuditEntry.query(trx).where({ estateId: access.estateId, action: 'conflicts.settle', subjectId: conflictId }).orderBy('id', 'desc').first();
     const done = (entry?.after as { done?: Settled } | undefined)?.done;
     if (!done) throw new Clash('settledBefore', say('conflictSettledBefore'));
+    const { subjectName, at } = await conflictPlace(trx, conflict, readings);
     const takenIn = await takeIn(trx, access, done);
     await unmark(trx, access, done);
     await moveBack(trx, access, { done, now });
     await conflict.$query(trx).patch({ state: 'open', choice: null, keptReadingId: null, settledBy: null, settledAt: null });
-    await writeAudit(trx, access, { action: 'conflicts.reopen', subjectType: 'conflict', subjectId: conflictId, before: { choice, settledBy, settledAt }, after: { takenIn } });
+    await writeAudit(trx, access, { action: 'conflicts.reopen', subjectType: 'conflict', subjectId: conflictId, subjectName, before: { choice, settledBy, settledAt }, after: { at, takenIn } });
   });
 }
 

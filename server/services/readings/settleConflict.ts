@@ -9,6 +9,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { say } from '../../sentences/say.ts';
+import { conflictPlace } from './conflictPlace.ts';
 import { settlesAll } from './listConflicts.ts';
 import { inOrderOfTaking, newestReadings } from './newestReadings.ts';
 
@@ -32,9 +33,10 @@ export async function settleConflict(access: Access, conflictId: string, input: 
     if (!answersTo[conflict.kind].includes(input.choice)) throw new Unusable('noSuchAnswer', say('noSuchAnswer', { choice: input.choice, choices: answersTo[conflict.kind].join(', ') }));
     // Named as it came or as it was corrected: both mean the same record.
     const kept = input.keptReadingId === null ? [] : (chains.get(input.keptReadingId)?.map(({ id }) => id) ?? [input.keptReadingId]);
+    const { subjectName, at } = await conflictPlace(trx, conflict, readings);
     const done = await actions[input.choice](trx, { access, readings, kept, now });
     await conflict.$query(trx).patch({ state: 'settled', choice: input.choice, keptReadingId: input.keptReadingId, settledBy: access.personId, settledAt: now });
-    await writeAudit(trx, access, { action: 'conflicts.settle', subjectType: 'conflict', subjectId: conflictId, after: { ...input, kind: conflict.kind, readingIds: conflict.readingIds, done } });
+    await writeAudit(trx, access, { action: 'conflicts.settle', subjectType: 'conflict', subjectId: conflictId, subjectName, after: { ...input, at, kind: conflict.kind, readingIds: conflict.readingIds, done } });
   });
 }
 

@@ -171,6 +171,7 @@ export const en = {
   notOffered: '"{value}" is no answer to "{key}". Choose from: {choices}.',
   fileTakenBack: '{file} was taken back. Send it again to use it.',
   questionsOpen: 'A question about {file} is still open. Nothing is stored before. | {n} questions about {file} are still open. Nothing is stored before.',
+  checkedNeedReason: '{n} figure that the file {file} corrects was checked. Say why it changes. | {n} figures that the file {file} corrects were checked. Say why they change.',
   noReadings: '{file} gives no reading for a vine of this estate. Put it aside, or send the right file.',
   noReadingsSince: '{file} gives no reading for a vine of this estate; row {line} is the first that cannot be used. Put it aside, or send the right file.',
   linesRefused: 'A part of {file} cannot be used, in row {line}. Nothing is stored: mend the file and send it again, or confirm that it is left out. | {n} parts of {file} cannot be used, first in row {line}. Nothing is stored: mend the file and send it again, or confirm that {n} are left out.',

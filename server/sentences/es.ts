@@ -172,6 +172,7 @@ export const es: Record<SentenceKey, string> = {
   notOffered: '«{value}» no es una respuesta a «{key}». Elija entre: {choices}.',
   fileTakenBack: '{file} se retiró. Envíelo otra vez para usarlo.',
   questionsOpen: 'Aún hay una pregunta abierta sobre {file}. Antes no se guarda nada. | Aún hay {n} preguntas abiertas sobre {file}. Antes no se guarda nada.',
+  checkedNeedReason: '{n} cifra que corrige el archivo {file} estaba revisada. Indique por qué cambia. | {n} cifras que corrige el archivo {file} estaban revisadas. Indique por qué cambian.',
   noReadings: '{file} no da ninguna lectura para cepas de esta finca. Apártelo o envíe el archivo correcto.',
   noReadingsSince: '{file} no da ninguna lectura para cepas de esta finca; la fila {line} es la primera que no se puede usar. Apártelo o envíe el archivo correcto.',
   linesRefused: 'Una parte de {file} no se puede usar, en la fila {line}. No se guarda nada: corrija el archivo y envíelo otra vez, o confirme que se omite. | {n} partes de {file} no se pueden usar, la primera en la fila {line}. No se guarda nada: corrija el archivo y envíelo otra vez, o confirme que se omiten {n}.',

@@ -172,6 +172,7 @@ export const fr: Record<SentenceKey, string> = {
   notOffered: '« {value} » n’est pas une réponse à « {key} ». Choisissez parmi : {choices}.',
   fileTakenBack: '{file} a été retiré. Renvoyez-le pour l’utiliser.',
   questionsOpen: 'Une question sur {file} est encore ouverte. Rien n’est enregistré avant. | {n} questions sur {file} sont encore ouvertes. Rien n’est enregistré avant.',
+  checkedNeedReason: '{n} chiffre que le fichier {file} corrige était vérifié. Dites pourquoi il change. | {n} chiffres que le fichier {file} corrige étaient vérifiés. Dites pourquoi ils changent.',
   noReadings: '{file} ne donne aucun relevé pour un cep de ce domaine. Mettez-le de côté, ou envoyez le bon fichier.',
   noReadingsSince: '{file} ne donne aucun relevé pour un cep de ce domaine ; la ligne {line} est la première inutilisable. Mettez-le de côté, ou envoyez le bon fichier.',
   linesRefused: 'Une partie de {file} est inutilisable, à la ligne {line}. Rien n’est enregistré : corrigez le fichier et renvoyez-le, ou confirmez qu’elle est omise. | {n} parties de {file} sont inutilisables, la première à la ligne {line}. Rien n’est enregistré : corrigez le fichier et renvoyez-le, ou confirmez que {n} sont omises.',

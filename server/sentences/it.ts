@@ -172,6 +172,7 @@ export const it: Record<SentenceKey, string> = {
   notOffered: '«{value}» non è una risposta a «{key}». Scegliere tra: {choices}.',
   fileTakenBack: '{file} è stato ritirato. Inviarlo di nuovo per usarlo.',
   questionsOpen: 'Una domanda su {file} è ancora aperta. Prima non si registra nulla. | {n} domande su {file} sono ancora aperte. Prima non si registra nulla.',
+  checkedNeedReason: '{n} cifra corretta dal file {file} era già controllata. Indicare perché cambia. | {n} cifre corrette dal file {file} erano già controllate. Indicare perché cambiano.',
   noReadings: '{file} non dà letture per ceppi di questa tenuta. Metterlo da parte o inviare il file giusto.',
   noReadingsSince: '{file} non dà letture per ceppi di questa tenuta; la riga {line} è la prima che non si può usare. Metterlo da parte o inviare il file giusto.',
   linesRefused: 'Una parte di {file} non si può usare, alla riga {line}. Nulla è registrato: correggere il file e inviarlo di nuovo, o confermare che si omette. | {n} parti di {file} non si possono usare, la prima alla riga {line}. Nulla è registrato: correggere il file e inviarlo di nuovo, o confermare che se ne omettono {n}.',

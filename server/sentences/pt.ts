@@ -172,6 +172,7 @@ export const pt: Record<SentenceKey, string> = {
   notOffered: '«{value}» não é uma resposta a «{key}». Escolha entre: {choices}.',
   fileTakenBack: '{file} foi retirado. Envie-o de novo para o usar.',
   questionsOpen: 'Ainda há uma pergunta em aberto sobre {file}. Antes disso nada se guarda. | Ainda há {n} perguntas em aberto sobre {file}. Antes disso nada se guarda.',
+  checkedNeedReason: '{n} número que o ficheiro {file} corrige estava verificado. Diga porque muda. | {n} números que o ficheiro {file} corrige estavam verificados. Diga porque mudam.',
   noReadings: '{file} não dá nenhuma leitura para cepas desta quinta. Ponha-o de lado ou envie o ficheiro certo.',
   noReadingsSince: '{file} não dá nenhuma leitura para cepas desta quinta; a linha {line} é a primeira que não pode ser usada. Ponha-o de lado ou envie o ficheiro certo.',
   linesRefused: 'Uma parte de {file} não pode ser usada, na linha {line}. Nada se guarda: corrija o ficheiro e envie-o de novo, ou confirme que fica de fora. | {n} partes de {file} não podem ser usadas, a primeira na linha {line}. Nada se guarda: corrija o ficheiro e envie-o de novo, ou confirme que {n} ficam de fora.',

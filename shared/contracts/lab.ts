@@ -106,7 +106,16 @@ export const labFileView = z.object({
   entries: z.array(labFileEntry),
   /** Laboratory whose earlier file had the same columns: its answers were taken over. */
   rememberedFrom: z.string().nullable(),
+  /** Checked figures that it corrects, as it is answered now: they change only with a reason. */
+  changesChecked: z.number().int(),
 });
 export type LabFileView = z.infer<typeof labFileView>;
 export const labFileAnswers = z.object({ answers: z.record(z.string().max(300), z.string().max(120)) });
-export const labFileStore = z.object({ labName: z.string().trim().min(1, 'Name the laboratory, so that its next file is read the same way.').max(80), instrument: z.string().trim().max(80).default(''), method: z.string().trim().max(80).default('') });
+export const labFileStore = z.object({
+  labName: z.string().trim().min(1, 'Name the laboratory, so that its next file is read the same way.').max(80),
+  instrument: z.string().trim().max(80).default(''),
+  method: z.string().trim().max(80).default(''),
+  /** Why checked figures change, for all that the file corrects. */
+  reason: z.string().trim().max(300).default(''),
+});
+export type LabFileFacts = z.infer<typeof labFileStore>;

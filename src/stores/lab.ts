@@ -1,6 +1,6 @@
 import { defineStore } from 'pinia';
 import { shallowRef } from 'vue';
-import type { LabBench, LabFileView, LabOutcome, ResultState } from '../../shared/contracts/lab.ts';
+import type { LabBench, LabFileFacts, LabFileView, LabOutcome, ResultState } from '../../shared/contracts/lab.ts';
 import { http } from '../lib/http.ts';
 
 export interface Receipt {
@@ -75,7 +75,7 @@ export const useLabStore = defineStore('lab', () => {
     openFile.value = await http.patch<LabFileView>(`${base(estateId)}/lab/files/${fileId}`, { answers });
   }
 
-  async function storeFile(estateId: string, fileId: string, facts: { labName: string; instrument: string; method: string }): Promise<number> {
+  async function storeFile(estateId: string, fileId: string, facts: LabFileFacts): Promise<number> {
     const stored = await http.post<LabFileView>(`${base(estateId)}/lab/files/${fileId}/store`, facts);
     openFile.value = null;
     await Promise.all([load(estateId), loadFiles(estateId)]);

@@ -176,6 +176,21 @@ describe('a file of the laboratory', () => {
     expect((await bench()).results).toMatchObject([{ value: 23.4, corrected: true, fileName: 'again.csv' }]);
   });
 
+  it('corrects checked figures only with one reason for the whole file, which stands with them and in the history', async () => {
+    await type(result({ typed: '20' }));
+    await Reading.query().patch({ state: 'checked' });
+    const file = (await send('again.csv', Buffer.from(`Code;Brix\n${A};23,4\n`))).body as LabFileView;
+    expect(file.changesChecked).toBe(0);
+    expect((await lab.patch(`${base()}/files/${file.id}`, { answers: { again: 'replace' } })).body).toMatchObject({ changesChecked: 1 });
+    const refused = await lab.post(`${base()}/files/${file.id}/store`, { labName: 'Coteau' });
+    expect(refused.status).toBe(422);
+    expect(refused.body.detail).toMatch(/again\.csv.*why it changes/);
+    expect(await Reading.query().resultSize()).toBe(1);
+    expect((await lab.post(`${base()}/files/${file.id}/store`, { labName: 'Coteau', reason: 'Refractometer set anew' })).status).toBe(200);
+    expect(await Reading.query().findOne({ value: 23.4 })).toMatchObject({ note: 'Refractometer set anew', state: 'provisional' });
+    expect(await AuditEntry.query().where({ estateId: estate.estateId, action: 'lab.storeFile' }).orderBy('id', 'desc').first()).toMatchObject({ reason: 'Refractometer set anew' });
+  });
+
   it('comes back byte for byte, and only within its estate', async () => {
     const body = workbook([[A, 13.1, 4.5]]);
     const file = (await send('week 36.xlsx', body)).body as LabFileView;

@@ -13,6 +13,8 @@ import { StoredFile } from '../../models/StoredFile.ts';
 import { fileStore } from '../../storage/fileStore.ts';
 import { dropUploads, type Upload } from '../../storage/uploads.ts';
 import { runCompute } from '../../workers/computePool.ts';
+import { holdersOf } from '../bags/bagContext.ts';
+import { checkedOf, correctedBy } from './fileCorrections.ts';
 import { surroundings } from './surroundings.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -52,7 +54,7 @@ export async function viewLabFile(access: Access, fileId: string, now: Date): Pr
 export async function listLabFiles(access: Access): Promise<LabFileView[]> {
   const rows = await LabFile.query().where({ estateId: access.estateId }).whereNot({ state: 'dismissed' }).orderBy('sentAt', 'desc').limit(40);
   const people = await Person.query().findByIds(rows.flatMap(({ sentBy }) => sentBy ?? [])).select('id', 'name');
-  return rows.map((row) => ({ ...outside(row, people), words: [], questions: [], entries: [], rememberedFrom: null }));
+  return rows.map((row) => ({ ...outside(row, people), words: [], questions: [], entries: [], rememberedFrom: null, changesChecked: 0 }));
 }
 
 /** Takes answers; each may be given again until the results are stored. An answer that was not offered is refused. */
@@ -93,13 +95,14 @@ export async function read(access: Access, record: LabFile, { answers, now }: { 
 
 async function view(access: Access, record: LabFile, now: Date): Promise<LabFileView> {
   const people = await Person.query().findByIds(record.sentBy === null ? [] : [record.sentBy]).select('id', 'name');
-  if (record.state !== 'asks') return { ...outside(record, people), words: [], questions: [], entries: [], rememberedFrom: null };
+  if (record.state !== 'asks') return { ...outside(record, people), words: [], questions: [], entries: [], rememberedFrom: null, changesChecked: 0 };
   const { understood } = await read(access, record, { answers: record.answers, now });
   const { words, questions, entries } = understood;
+  const changesChecked = record.answers.again === 'replace' ? checkedOf(await correctedBy(access.estateId, { entries, bags: await holdersOf(undefined, access.estateId, entries.map(({ code }) => code)) })) : 0;
   const remembered = record.labName !== '' && questions.some(({ key, answer }) => answer !== null && isRemembered(key));
-  return { ...outside(record, people), words: [...words], questions: questions.map((question) => ({ ...question, choices: [...question.choices] })), entries: [...entries], rememberedFrom: remembered ? record.labName : null };
+  return { ...outside(record, people), words: [...words], questions: questions.map((question) => ({ ...question, choices: [...question.choices] })), entries: [...entries], rememberedFrom: remembered ? record.labName : null, changesChecked };
 }
 
-function outside(row: LabFile, people: readonly Person[]): Omit<LabFileView, 'words' | 'questions' | 'entries' | 'rememberedFrom'> {
+function outside(row: LabFile, people: readonly Person[]): Omit<LabFileView, 'words' | 'questions' | 'entries' | 'rememberedFrom' | 'changesChecked'> {
   return { id: row.id, fileName: row.fileName, labName: row.labName, state: row.state, sentAt: row.sentAt.toISOString(), sentBy: people.find(({ id }) => id === row.sentBy)?.name ?? null, storedAt: row.storedAt?.toISOString() ?? null, storedCount: row.storedCount };
 }

@@ -11,6 +11,7 @@ import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Reading } from '../../models/Reading.ts';
 import { holdersOf } from '../bags/bagContext.ts';
 import { seasonFinder } from '../bags/labels.ts';
+import { checkedOf, correctedBy } from './fileCorrections.ts';
 import { openFile, read, viewLabFile } from './labFiles.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -19,7 +20,7 @@ const rowsAtOnce = 500;
 
 /**
  * Stores the results of a file as provisional, all or none, and remembers how this laboratory's files are read. Refused
- * while a question is open; a second press finds the file stored and changes nothing.
+ * while a question is open, and without a reason where it corrects checked figures; a second press finds the file stored and changes nothing.
  */
 export async function storeLabFile(access: Access, fileId: string, input: z.infer<typeof labFileStore>, now: Date): Promise<LabFileView> {
   const { estateId, personId } = access;
@@ -36,7 +37,7 @@ export async function storeLabFile(access: Access, fileId: string, input: z.infe
     const answers = Object.fromEntries(understood.questions.flatMap(({ key, answer }) => (answer !== null && isRemembered(key) ? [[key, answer]] : [])));
     await LabMapping.query(trx).insert({ estateId, labName: input.labName, mapping: { signature: understood.signature, answers }, updatedAt: now }).onConflict(['estateId', 'labName']).merge(['mapping', 'updatedAt']);
     await LabFile.query(trx).where({ estateId, id: fileId }).patch({ state: 'stored', labName: input.labName, storedBy: personId, storedAt: now, storedCount: understood.entries.length });
-    await writeAudit(trx, access, { action: 'lab.storeFile', subjectType: 'labFile', subjectId: fileId, subjectName: record.fileName, after: { labName: input.labName, results: understood.entries.length, answers: record.answers } });
+    await writeAudit(trx, access, { action: 'lab.storeFile', subjectType: 'labFile', subjectId: fileId, subjectName: record.fileName, after: { labName: input.labName, results: understood.entries.length, answers: record.answers }, reason: input.reason === '' ? null : input.reason });
   });
   return viewLabFile(access, fileId, now);
 }
@@ -54,18 +55,18 @@ async function rowsOf(access: Access, entries: readonly LabEntry[], { trx, recor
   const bags = await holdersOf(trx, estateId, entries.map(({ code }) => code));
   const seasonOf = await seasonFinder(trx, estateId);
   const measures = await MeasureRecord.query(trx).where({ estateId });
-  const before = replace ? await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bags.map(({ id }) => id)).whereNotExists(Reading.query(trx).alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId')) : [];
-  const replaced = new Set<string>();
+  const corrected = replace ? await correctedBy(estateId, { entries, bags }, trx) : new Map<LabEntry, Reading>();
+  const checked = checkedOf(corrected);
+  if (checked > 0 && input.reason.length < 3) throw new Unusable('needsReason', say('checkedNeedReason', { n: checked, file: record.fileName }));
   return entries.map((entry) => {
     const bag = bags.find(({ code }) => code === entry.code);
     if (!bag) throw new Clash('bagGone', say('bagGone', { code: entry.code }));
-    const former = before.find((reading) => reading.bagId === bag.id && reading.measureCode === entry.measure && !replaced.has(reading.id));
-    if (former) replaced.add(former.id);
+    const former = corrected.get(entry);
     return {
       id: randomUUID(), estateId, seasonId: seasonOf(bag), blockId: bag.blockId, roundId: bag.roundId, bagId: bag.id,
       measureCode: entry.measure, value: entry.value, unit: measures.find(({ code }) => code === entry.measure)!.unit, valueTyped: entry.typed, unitTyped: entry.unitTyped,
       samples: Math.max(1, bag.vines.length), takenAt: bag.closedAt ?? bag.receivedAt ?? now, receivedAt: now, personId, source: 'lab' as const, state: 'provisional' as const, stateBy: personId, stateAt: now,
-      supersedes: former?.id ?? null, instrument: input.instrument, method: input.method, analysedOn: entry.analysedOn, labFileId: record.id,
+      supersedes: former?.id ?? null, note: former ? input.reason : '', instrument: input.instrument, method: input.method, analysedOn: entry.analysedOn, labFileId: record.id,
       flags: [...(entry.below ? ['belowDetection'] : []), ...(entry.odd ? ['odd'] : []), ...(bag.facts.wet === true ? ['wetFruit'] : []), ...(entry.corrected ? ['temperature'] : [])],
     };
   });

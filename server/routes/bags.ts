@@ -4,6 +4,7 @@ import { accessOf, allow, idParam } from '../access/guard.ts';
 import { closeBags } from '../services/bags/closeBags.ts';
 import { listBags } from '../services/bags/listBags.ts';
 import { receiveBags, reportMissing } from '../services/bags/receiveBags.ts';
+import { reopenClash } from '../services/bags/reopenClash.ts';
 import { settleClash } from '../services/bags/settleClash.ts';
 import { swapBags } from '../services/bags/swapBags.ts';
 
@@ -30,6 +31,10 @@ export function bagRoutes(): Router {
   });
   router.post('/bags/:bagId/settle', allow('labels.settle'), async (request, response) => {
     await settleClash(accessOf(request), idParam(request, 'bagId'), clashChoice.parse(request.body));
+    response.status(204).end();
+  });
+  router.post('/bags/:bagId/reopen', allow('labels.settle'), async (request, response) => {
+    await reopenClash(accessOf(request), idParam(request, 'bagId'));
     response.status(204).end();
   });
   return router;

@@ -116,3 +116,7 @@ export const clashChoice = z.object({
   reason,
 });
 export type ClashChoice = z.infer<typeof clashChoice>;
+
+/** A label that was on two bags, and what somebody said of it. */
+export const settledBagClash = z.object({ bagId: id, code: z.string(), choice: clashChoice.shape.choice, reason: z.string(), settledBy: z.string().nullable(), settledAt: z.string(), mayReopen: z.boolean() });
+export type SettledBagClash = z.infer<typeof settledBagClash>;

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { bagClash } from './bags.ts';
+import { bagClash, settledBagClash } from './bags.ts';
 import { id } from './common.ts';
 
 /**
@@ -67,7 +67,7 @@ export const conflictCard = z.object({
 });
 export type ConflictCard = z.infer<typeof conflictCard>;
 
-export const conflictList = z.object({ items: z.array(conflictCard), bags: z.array(bagClash), total: z.int(), open: z.int() });
+export const conflictList = z.object({ items: z.array(conflictCard), bags: z.array(bagClash), settledBags: z.array(settledBagClash), total: z.int(), open: z.int() });
 export type ConflictList = z.infer<typeof conflictList>;
 
 export const conflictChoice = z.object({ choice: conflictAnswer, keptReadingId: id.nullable().default(null) });

@@ -9,5 +9,6 @@ export const useConflictsStore = defineStore('conflicts', () => {
   const settle = (estateId: string, conflictId: string, choice: ConflictAnswer, keptReadingId: string | null) => http.post(`/api/estates/${estateId}/conflicts/${conflictId}/settle`, { choice, keptReadingId });
   const reopen = (estateId: string, conflictId: string) => http.post(`/api/estates/${estateId}/conflicts/${conflictId}/reopen`, {});
   const settleBag = (estateId: string, bagId: string, choice: ClashChoice) => http.post(`/api/estates/${estateId}/bags/${bagId}/settle`, choice);
-  return { settleBag, list, settle, reopen };
+  const reopenBag = (estateId: string, bagId: string) => http.post(`/api/estates/${estateId}/bags/${bagId}/reopen`, {});
+  return { reopenBag, settleBag, list, settle, reopen };
 });

@@ -212,4 +212,36 @@ describe('a label on two bags, for whoever judges conflicts', () => {
     expect(await Reading.query().first()).toMatchObject({ bagId: later.id, value: 21, excludedReason: null });
     expect((await conflicts(lab)).bags).toMatchObject([{ first: { id: later.id }, later: { id: third.id } }]);
   });
+
+  it.each(['same', 'keepFirst', 'keepLater', 'relabel'] as const)('%s is taken back: label, receipt, figures, vines and readings are as before, and both deeds stand in the history', async (choice) => {
+    const [first, later, third] = [bag(), bag({ vines: vinesOf(30, 2) }), bag({ vines: vinesOf(44, 2) })];
+    await close(agronomist, first, later, third);
+    await lab.post(`${base()}/bags/received`, { codes: [first.code, labelCode(1002)] });
+    await brix(first.id, 21);
+    await Reading.query().insert({ id: randomUUID(), estateId: estate.estateId, seasonId: block.seasonId, blockId: block.blockId, bagId: later.id, measureCode: 'rot', value: 3, unit: '%', takenAt: new Date('2026-09-01T07:41:00Z'), source: 'field', state: 'checked' });
+    const all = async () => [(await Bag.query().orderBy('id')).map(({ createdAt: _, ...rest }) => rest), (await Reading.query().orderBy('value')).map(({ bagId, takenAt, excludedReason }) => ({ bagId, takenAt, excludedReason }))];
+    const before = await all();
+    expect((await manager.post(`${base()}/bags/${later.id}/reopen`)).status).toBe(409);
+    expect((await lab.post(`${base()}/bags/${later.id}/settle`, { choice, newCode: choice === 'relabel' ? labelCode(1002) : null, reason: 'Looked at it' })).status).toBe(204);
+    expect(await all()).not.toEqual(before);
+    const settled = async () => (await conflicts(manager)).settledBags.filter(({ bagId }) => bagId === later.id);
+    expect(await settled()).toMatchObject([{ bagId: later.id, code: first.code, choice, settledBy: 'Wim Roe', reason: 'Looked at it', mayReopen: true }]);
+    expect((await conflicts(crew)).settledBags).toEqual([]);
+    expect((await crew.post(`${base()}/bags/${later.id}/reopen`)).status).toBe(403);
+    expect((await manager.post(`${base()}/bags/${later.id}/reopen`)).status).toBe(204);
+    expect(await all()).toEqual(before);
+    expect(await settled()).toEqual([]);
+    expect((await AuditEntry.query().where({ estateId: estate.estateId, subjectId: later.id }).whereIn('action', ['bags.settle', 'bags.reopen']).orderBy('id')).map(({ action }) => action)).toEqual(['bags.settle', 'bags.reopen']);
+  });
+
+  it('is not taken back over a label that was exchanged since, nor over figures under a new one', async () => {
+    const [first, later, other] = [bag(), bag({ vines: vinesOf(30, 2) }), bag({ code: labelCode(1001), vines: vinesOf(3, 1) })];
+    await close(agronomist, first, later, other);
+    await lab.post(`${base()}/bags/${later.id}/settle`, { choice: 'relabel', newCode: labelCode(1003), reason: 'Tied on anew' });
+    await brix(later.id, 20);
+    expect((await manager.post(`${base()}/bags/${later.id}/reopen`)).body.detail).toMatch(/changed since.*exchanging/);
+    await Reading.query().delete();
+    await lab.post(`${base()}/bags/swap`, { codes: [first.code, other.code], reason: 'Changed places' });
+    expect((await manager.post(`${base()}/bags/${later.id}/reopen`)).status).toBe(409);
+  });
 });

@@ -103,6 +103,7 @@ const doors: Door[] = [
   door('post', '/bags/missing', 'lab.enter'),
   door('post', '/bags/swap', 'labels.settle'),
   door('post', `/bags/${nobody}/settle`, 'labels.settle'),
+  door('post', `/bags/${nobody}/reopen`, 'labels.settle'),
   door('get', '/conflicts', 'conflicts.settle', 'own'),
   door('post', `/conflicts/${nobody}/settle`, 'conflicts.settle', 'own'),
   door('post', `/conflicts/${nobody}/reopen`, 'conflicts.settle', 'own'),

@@ -31,6 +31,7 @@ export const field: Operations = belowEstate({
   'post /bags/missing': { does: 'Say that bags are not at the lab', body: bagsMissing, status: 204 },
   'post /bags/swap': { does: 'Exchange the labels of two bags, with their results, for a reason', body: bagSwap, status: 204 },
   'post /bags/:bagId/settle': { does: 'Settle a label that is on two bags', body: clashChoice, status: 204 },
+  'post /bags/:bagId/reopen': { does: 'Take a mistaken answer to a label on two bags back', status: 204 },
   'get /field-photos': { does: 'Photos of vines', query: ofBlock, answer: listOf(fieldPhotoView) },
   'post /field-photos': { does: 'Send one photo in the multipart field "files" with its facts as JSON in the field "facts"; may be repeated', files: true, answer: made, status: 201 },
   'get /field-photos/:photoId': { does: 'A photo, without place and device in the file', type: 'image/jpeg' },

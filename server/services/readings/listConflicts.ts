@@ -6,7 +6,7 @@ import { Person } from '../../models/Person.ts';
 import type { Reading } from '../../models/Reading.ts';
 import { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { Round } from '../../models/Round.ts';
-import { bagClashes } from '../bags/bagClashes.ts';
+import { bagClashes, settledClashes } from '../bags/bagClashes.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 import { inOrderOfTaking, newestReadings } from './newestReadings.ts';
 import { nameFor } from './readerName.ts';
@@ -30,8 +30,8 @@ export async function listConflicts(access: Access): Promise<ConflictList> {
   const grounds = new Map<string, BlockVines>();
   for (const blockId of new Set(readings.map((reading) => reading.blockId))) grounds.set(blockId, await loadBlockVines(estateId, blockId));
   const items = conflicts.map((conflict) => cardOf(conflict, { access, grounds, people, rounds, readings: inOrderOfTaking(conflict.readingIds.map((id) => chains.get(id) ?? [])).filter(isOnVine) }));
-  const bags = await bagClashes(access);
-  return { items, bags, total: items.length + bags.length, open: items.filter(({ state }) => state === 'open').length + bags.length };
+  const [bags, settledBags] = [await bagClashes(access), await settledClashes(access)];
+  return { items, bags, settledBags, total: items.length + bags.length + settledBags.length, open: items.filter(({ state }) => state === 'open').length + bags.length };
 }
 
 export function settlesAll(access: Access): boolean {

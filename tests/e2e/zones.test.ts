@@ -118,6 +118,7 @@ describe('from layers to zones in force', () => {
     await page.keyboard.press('Space');
     await page.keyboard.press((await zoning(page)).zones.length > 2 ? '3' : '2');
     await done(page, 'One row given to zone');
+    await page.locator('ol li').getByText('Row 6', { exact: true }).first().waitFor();
     await page.getByRole('button', { name: 'Follow the rows' }).click();
     await done(page, 'Snapped to whole rows');
     const before = await zoning(page);

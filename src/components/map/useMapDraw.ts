@@ -15,6 +15,9 @@ interface MapDrawOptions {
   readonly isAdding: Ref<boolean>;
 }
 
+/** Pixels round the first corner in which a click ends the shape: a fingertip, and no more, so that a small piece can be drawn. */
+const pointerDistance = 22;
+
 /** About 1 cm: as fine as an outline is kept. */
 const decimals = 7;
 
@@ -68,8 +71,8 @@ export function useMapDraw(map: ShallowRef<MlMap | null>, { shape, corners, isAd
     draw = new TerraDraw({
       adapter: new TerraDrawMapLibreGLAdapter({ map: ready, coordinatePrecision: decimals }),
       modes: [
-        new TerraDrawPolygonMode({ styles: { fillColor: sky, fillOpacity: 0.12, outlineColor: sky, outlineWidth: 3, closingPointColor: sheet, closingPointWidth: 6, closingPointOutlineColor: sky, closingPointOutlineWidth: 3 } }),
-        new TerraDrawLineStringMode({ styles: { lineStringColor: sky, lineStringWidth: 3, closingPointColor: sheet, closingPointWidth: 6, closingPointOutlineColor: sky, closingPointOutlineWidth: 3 } }),
+        new TerraDrawPolygonMode({ pointerDistance, styles: { fillColor: sky, fillOpacity: 0.12, outlineColor: sky, outlineWidth: 3, closingPointColor: sheet, closingPointWidth: 6, closingPointOutlineColor: sky, closingPointOutlineWidth: 3 } }),
+        new TerraDrawLineStringMode({ pointerDistance, styles: { lineStringColor: sky, lineStringWidth: 3, closingPointColor: sheet, closingPointWidth: 6, closingPointOutlineColor: sky, closingPointOutlineWidth: 3 } }),
         new TerraDrawSelectMode({ flags: { polygon: edit, linestring: edit }, styles: { selectedPolygonColor: sky, selectedPolygonFillOpacity: 0.12, selectedPolygonOutlineColor: sky, selectedPolygonOutlineWidth: 3, selectedLineStringColor: sky, selectedLineStringWidth: 3, selectionPointColor: sheet, selectionPointWidth: 6, selectionPointOutlineColor: sky, selectionPointOutlineWidth: 3, midPointColor: sky, midPointWidth: 4, midPointOutlineColor: sheet, midPointOutlineWidth: 1 } }),
       ],
     });

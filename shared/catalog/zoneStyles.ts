@@ -27,7 +27,7 @@ export interface ZoneStyle {
 
 export interface ZoneStyleOptions {
   readonly set?: ColourSet;
-  /** How many zones the block has; the ordered set needs it. */
+  /** Highest zone number of the block (`zoneSpan`); the ordered set needs it. */
   readonly count: number;
   /** Colours that people gave zones, by zone number. */
   readonly own?: Readonly<Record<number, string>>;
@@ -39,6 +39,14 @@ export function zoneStyle(zone: number, { set = 'ordered', count, own = {} }: Zo
   const palette = set === 'unordered' ? unorderedColours : ordered[Math.min(6, Math.max(1, count))]!;
   const fill = own[zone] ?? palette[place % palette.length]!;
   return { fill, pattern: patterns[place]!, mark: markOn(fill) };
+}
+
+/**
+ * Highest number among the zones of a block. Colours go by it and not by how many zones there are: where zones were joined a number
+ * is missing, and the rest keep their colours and their order from low to high.
+ */
+export function zoneSpan(zones: readonly { readonly number: number }[]): number {
+  return Math.max(0, ...zones.map(({ number }) => number));
 }
 
 /** Ink on light fills, chalk on dark ones. The threshold is the luminance where both have equal contrast. */

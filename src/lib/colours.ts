@@ -1,7 +1,7 @@
 import type { RampName } from '../../shared/catalog/layerTypes.ts';
 import { channels, luminance, unorderedColours } from '../../shared/catalog/zoneStyles.ts';
 
-export { channels, luminance, markOn, patterns, zoneStyle, type ColourSet, type Pattern, type ZoneStyle } from '../../shared/catalog/zoneStyles.ts';
+export { channels, luminance, markOn, patterns, zoneSpan, zoneStyle, type ColourSet, type Pattern, type ZoneStyle } from '../../shared/catalog/zoneStyles.ts';
 
 /** Colours of layer values. Ramps: sampled from Crameri, Scientific colour maps (2020): tokyo, lajolla, bamako, lipari, vik. */
 const ramps: Record<RampName, readonly string[]> = {

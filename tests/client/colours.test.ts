@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { resolve } from 'node:path';
 import { describe, expect, it } from 'vitest';
-import { classColour, contrast, markOn, ownClassColours, rampColour, rampStops, zoneStyle } from '../../src/lib/colours.ts';
+import { classColour, contrast, markOn, ownClassColours, rampColour, rampStops, zoneSpan, zoneStyle } from '../../src/lib/colours.ts';
 
 const css = readFileSync(resolve(import.meta.dirname, '../../src/assets/tokens.css'), 'utf8');
 
@@ -58,6 +58,15 @@ describe('zones', () => {
         expect(new Set(styles.map(({ pattern }) => pattern)).size).toBe(count);
       }
     }
+  });
+
+  it('keep their colours and their order where a number is missing since two were joined', () => {
+    const all = [1, 2, 3].map((number) => zoneStyle(number, { count: zoneSpan([{ number: 1 }, { number: 2 }, { number: 3 }]) }).fill);
+    const left = [2, 3].map((number) => zoneStyle(number, { count: zoneSpan([{ number: 2 }, { number: 3 }]) }).fill);
+    expect(left).toEqual(all.slice(1));
+    expect(zoneSpan([])).toBe(0);
+    const gaps = [1, 2, 5, 9].map((number) => zoneStyle(number, { count: zoneSpan([{ number: 9 }, { number: 1 }, { number: 5 }, { number: 2 }]) }).fill);
+    expect(new Set(gaps).size).toBe(4);
   });
 
   it('marks on a fill are the better readable of ink and chalk', () => {

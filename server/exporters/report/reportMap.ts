@@ -2,7 +2,7 @@ import { boundsOf } from '../../../shared/geo/bounds.ts';
 import type { MultiPolygonXY, RingXY, XY } from '../../../shared/geo/coordinates.ts';
 import { polygonsCentroid, polygonsArea } from '../../../shared/geo/rings.ts';
 import { convergenceDeg, fromUtm, polygonsToUtm } from '../../../shared/geo/utm.ts';
-import { zoneStyle } from '../../../shared/catalog/zoneStyles.ts';
+import { zoneSpan, zoneStyle } from '../../../shared/catalog/zoneStyles.ts';
 import { ink, type Page } from './reportPage.ts';
 import type { ReportZone, ZoneReport } from './zoneReport.ts';
 
@@ -39,7 +39,7 @@ export function drawMap(page: Page, report: ZoneReport, box: Box): void {
     page.save();
     trace(page, shape, toPaper);
     page.clip('even-odd');
-    fillZone(page, { zone, count: zones.length }, box);
+    fillZone(page, { zone, count: zoneSpan(zones) }, box);
     page.restore();
   }
   for (const { shape } of zones) {

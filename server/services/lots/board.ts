@@ -1,3 +1,4 @@
+import { zoneSpan } from '../../../shared/catalog/zoneStyles.ts';
 import { scaled } from '../../../shared/cellar/dependent.ts';
 import type { LotView, LotZone, LotsBoard, TankView } from '../../../shared/contracts/lots.ts';
 import type { Access } from '../../access/access.ts';
@@ -93,7 +94,7 @@ function zoneLine(ground: BoardGround, block: BoardBlock, index: number): LotZon
     blockName: block.ground.block.name,
     variety: block.ground.block.variety,
     number: zone.number,
-    zoneCount: block.zones.length,
+    zoneCount: zoneSpan(block.zones),
     name: zone.name,
     areaHa: zone.areaM2 / 10_000,
     vines: outlook.vines,
@@ -143,7 +144,7 @@ function lotView(ground: BoardGround, index: number, tanks: TankView[]): Omit<Lo
       blockId: block.ground.block.id,
       blockName: block.ground.block.name,
       number: zone.number,
-      zoneCount: block.zones.length,
+      zoneCount: zoneSpan(block.zones),
       name: zone.name,
       vines,
       bearing,

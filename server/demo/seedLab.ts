@@ -28,7 +28,7 @@ export async function seedLab(made: DemoEstate, laid: readonly LaidBlock[], opti
   await closeBags(manager, { bags: bags.map(({ zone: _, ...bag }) => bag) }, options.now);
   const [here, underway] = [bags.slice(0, -4), bags.slice(-4)];
   await receiveBags(lab, [...here.map(({ code }) => code), labelCode(firstLabel + 99 * labelStep)], options.now);
-  await reportMissing(lab, [underway[0]!.id], options.now);
+  await reportMissing(lab, { bagIds: [underway[0]!.id], ifExpected: true }, options.now);
   const measured = here.slice(0, 6);
   const results = measured.flatMap(({ code, zone }) => figuresOf(zone, random).map((figure) => ({ id: uuidFrom(random), code, ...figure })));
   await recordResults(lab, { results }, options.now);

@@ -1,9 +1,9 @@
 import { Router } from 'express';
-import { bagBatch, bagQuery, bagReceipt, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
+import { bagBatch, bagQuery, bagReceipt, bagsExpected, bagsMissing, bagSwap, clashChoice } from '../../shared/contracts/bags.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { closeBags } from '../services/bags/closeBags.ts';
 import { listBags } from '../services/bags/listBags.ts';
-import { receiveBags, reportMissing } from '../services/bags/receiveBags.ts';
+import { expectAgain, receiveBags, reportMissing } from '../services/bags/receiveBags.ts';
 import { reopenClash } from '../services/bags/reopenClash.ts';
 import { settleClash } from '../services/bags/settleClash.ts';
 import { swapBags } from '../services/bags/swapBags.ts';
@@ -22,8 +22,10 @@ export function bagRoutes(): Router {
     response.json({ outcomes: await receiveBags(accessOf(request), bagReceipt.parse(request.body).codes, new Date()) });
   });
   router.post('/bags/missing', allow('lab.enter'), async (request, response) => {
-    await reportMissing(accessOf(request), bagsMissing.parse(request.body).bagIds, new Date());
-    response.status(204).end();
+    response.json({ bagIds: await reportMissing(accessOf(request), bagsMissing.parse(request.body), new Date()) });
+  });
+  router.post('/bags/expected', allow('lab.enter'), async (request, response) => {
+    response.json({ bagIds: await expectAgain(accessOf(request), bagsExpected.parse(request.body).bagIds) });
   });
   router.post('/bags/swap', allow('labels.settle'), async (request, response) => {
     await swapBags(accessOf(request), bagSwap.parse(request.body), new Date());

@@ -13,7 +13,7 @@ import { uploadsOf } from '../storage/uploads.ts';
 /** The lab's bench: figures typed or read from files, checked, and left out only with a reason. */
 export function labRoutes(options: { receive: RequestHandler }): Router {
   const router = Router({ mergeParams: true });
-  const see = allow('lab.enter', 'propose');
+  const see = allow('lab.enter', 'read');
   router.get('/lab', see, async (request, response) => {
     response.json(await labBench(accessOf(request), new Date()));
   });

@@ -25,7 +25,7 @@ const sources: readonly (readonly [Permission, Reach, Source])[] = [
   ['people.see', 'read', people],
   ['readings.record', 'own', rounds],
   ['estate.see', 'read', layers],
-  ['lab.enter', 'propose', bags],
+  ['lab.enter', 'read', bags],
 ];
 
 /** Things of the estate whose name answers what was typed, best first; accents, case and one slip are forgiven. */

@@ -38,7 +38,7 @@ export const permissions = {
   'readings.import': { ...planners, winemaker: 'do' },
   'conflicts.settle': { ...planners, crew: 'own', lab: 'own' },
   'sheets.print': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', crew: 'own', lab: 'do' },
-  'lab.enter': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'propose', lab: 'do' },
+  'lab.enter': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'read', winemaker: 'propose', lab: 'do' },
   'results.check': { owner: 'do', admin: 'do', agronomist: 'do', winemaker: 'do', lab: 'do' },
   'labels.settle': { ...planners, winemaker: 'do', lab: 'do' },
   'results.see': { owner: 'do', admin: 'do', agronomist: 'do', manager: 'do', winemaker: 'do', lab: 'read', guest: 'read' },

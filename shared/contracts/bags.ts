@@ -104,8 +104,14 @@ export const bagQuery = z.object({ round: id.optional(), days: z.coerce.number()
 /** The lab scans or types what lies on the bench. */
 export const bagReceipt = z.object({ codes: z.array(labelCode).min(1).max(300) });
 export const bagReceiptAnswer = z.object({ outcomes: z.array(z.object({ code: z.string(), state: z.enum(['here', 'hereBefore', 'extra']) })) });
-/** "That was all": the bags named are not here. */
-export const bagsMissing = z.object({ bagIds: z.array(id).min(1).max(300) });
+const bagIds = z.array(id).min(1).max(600);
+/** The bags named are not here. `ifExpected`: only those that nobody has taken in meanwhile, as for "that was all". */
+export const bagsMissing = z.object({ bagIds, ifExpected: z.boolean().default(false) });
+export type BagsMissing = z.infer<typeof bagsMissing>;
+/** Bags that were called missing and are on their way again. */
+export const bagsExpected = z.object({ bagIds });
+/** The bags that a request changed. */
+export const bagsChanged = z.object({ bagIds: z.array(id) });
 const reason = z.string().trim().min(3, 'Say why, in a few words.').max(300);
 /** The labels of two bags were exchanged, or a bag got another label: they change places in one step. */
 export const bagSwap = z.object({ codes: z.tuple([labelCode, labelCode]), reason }).refine(({ codes }) => codes[0] !== codes[1], { message: 'Name two different labels.', path: ['codes'] });

@@ -43,7 +43,7 @@ export const routePlaces = {
   conflicts: { path: '/e/:estateId/conflicts', frame: 'office', needs: ['conflicts.settle', 'own'], under: 'sampling' },
   measures: { path: '/e/:estateId/measures', frame: 'office', needs: ['plans.margins', 'propose'], under: 'sampling' },
   restrictions: { path: '/e/:estateId/restrictions', frame: 'office', needs: ['restrictions.see', 'read'], under: 'sampling' },
-  lab: { path: '/e/:estateId/lab', frame: 'office', needs: ['lab.enter', 'propose'] },
+  lab: { path: '/e/:estateId/lab', frame: 'office', needs: ['lab.enter', 'read'] },
   ripeness: { path: '/e/:estateId/ripeness', frame: 'office', needs: ['results.see', 'read'] },
   blockRipeness: { path: '/e/:estateId/blocks/:blockId/ripeness', frame: 'office', needs: ['results.see', 'read'], under: 'ripeness' },
   weather: { path: '/e/:estateId/weather', frame: 'office', needs: ['results.see', 'read'], under: 'ripeness' },

@@ -29,8 +29,15 @@ export const useLabStore = defineStore('lab', () => {
     return outcomes;
   }
 
-  async function missing(estateId: string, bagIds: readonly string[]): Promise<void> {
-    await http.post(`${base(estateId)}/bags/missing`, { bagIds });
+  /** Answers the bags that are missing by this: with `ifExpected` those that nobody has taken in meanwhile. */
+  async function missing(estateId: string, bagIds: readonly string[], ifExpected = false): Promise<readonly string[]> {
+    const changed = await http.post<{ bagIds: string[] }>(`${base(estateId)}/bags/missing`, { bagIds, ifExpected });
+    await load(estateId);
+    return changed.bagIds;
+  }
+
+  async function expectAgain(estateId: string, bagIds: readonly string[]): Promise<void> {
+    await http.post(`${base(estateId)}/bags/expected`, { bagIds });
     await load(estateId);
   }
 
@@ -90,5 +97,5 @@ export const useLabStore = defineStore('lab', () => {
 
   const original = (estateId: string, file: LabFileView) => http.download(`${base(estateId)}/lab/files/${file.id}/original`, file.fileName);
 
-  return { bench, files, openFile, load, loadFiles, receive, missing, swap, settle, storeResults, setState, exclude, sendFile, showFile, answerFile, storeFile, dismissFile, original };
+  return { bench, files, openFile, load, loadFiles, receive, missing, expectAgain, swap, settle, storeResults, setState, exclude, sendFile, showFile, answerFile, storeFile, dismissFile, original };
 });

@@ -101,6 +101,34 @@ describe('the receiving list', () => {
     expect((await lab.post(`${base()}/bags/received`, { codes: [one.code] })).body.outcomes[0].state).toBe('hereBefore');
   });
 
+  it('calls the rest missing but for one that somebody took in meanwhile, and takes that back', async () => {
+    const [one, two, three] = [bag(), bag({ code: labelCode(1001) }), bag({ code: labelCode(1002) })];
+    await close(agronomist, one, two, three);
+    await lab.post(`${base()}/bags/received`, { codes: [two.code] });
+    const all = [one, two, three].map(({ id }) => id);
+    const called = (await lab.post(`${base()}/bags/missing`, { bagIds: all, ifExpected: true })).body.bagIds as string[];
+    expect([...called].sort()).toEqual([one.id, three.id].sort());
+    expect(Object.fromEntries((await list()).map(({ id, place }) => [id, place]))).toEqual({ [one.id]: 'missing', [two.id]: 'here', [three.id]: 'missing' });
+    // One was found before the mistake was seen.
+    await lab.post(`${base()}/bags/received`, { codes: [three.code] });
+    expect((await lab.post(`${base()}/bags/expected`, { bagIds: called })).body.bagIds).toEqual([one.id]);
+    expect(Object.fromEntries((await list()).map(({ id, place }) => [id, place]))).toEqual({ [one.id]: 'expected', [two.id]: 'here', [three.id]: 'here' });
+    expect(await AuditEntry.query().where({ estateId: estate.estateId, action: 'bags.expect' }).resultSize()).toBe(1);
+    expect((await manager.post(`${base()}/bags/expected`, { bagIds: called })).status).toBe(403);
+    expect((await lab.post(`${base()}/bags/expected`, { bagIds: [randomUUID()] })).status).toBe(404);
+  });
+
+  it('is seen by the manager, who may put labels right but takes nothing in', async () => {
+    const [west, east] = [bag(), bag({ code: labelCode(1001), vines: vinesOf(44, 2) })];
+    await close(agronomist, west, east);
+    expect((await manager.get(`${base()}/lab`)).status).toBe(200);
+    expect((await list(manager)).map(({ holder }) => holder)).toEqual(['Ada Birch', 'Ada Birch']);
+    expect((await manager.post(`${base()}/bags/received`, { codes: [west.code] })).status).toBe(403);
+    expect((await manager.post(`${base()}/bags/swap`, { codes: [west.code, east.code], reason: 'Labels mixed at the cart.' })).status).toBe(204);
+    expect((await list()).find(({ id }) => id === west.id)!.code).toBe(east.code);
+    expect((await crew.get(`${base()}/lab`)).status).toBe(403);
+  });
+
   it('gives an extra bag its origin with its figures when the phone is heard of at last', async () => {
     await lab.post(`${base()}/bags/received`, { codes: [labelCode(1000)] });
     const [extra] = await list();

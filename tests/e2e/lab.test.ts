@@ -36,7 +36,8 @@ describe('a day at the lab', () => {
     await field.fill([...expected.slice(1).map(({ code }) => spellLabelCode(code).toLowerCase()), extra].join(', '));
     await field.press('Enter');
     await page.getByText(/is extra: nobody has sent/).waitFor();
-    await page.getByRole('button', { name: /That was all: 1 bag is missing/ }).click();
+    await page.getByRole('button', { name: /That was all: 1 bag is not here/ }).click();
+    await page.getByRole('button', { name: 'Call 1 bag missing' }).click();
     await expect.poll(async () => (await bench()).bags.find(({ id }) => id === expected[0]!.id)?.place).toBe('missing');
     await page.getByRole('row', { name: new RegExp(spellLabelCode(expected[0]!.code)) }).getByText(/last held by/).waitFor();
     await expectAccessible();

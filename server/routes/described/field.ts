@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { bagBatch, bagBatchAnswer, bagList, bagQuery, bagReceipt, bagReceiptAnswer, bagSwap, bagsMissing, clashChoice } from '../../../shared/contracts/bags.ts';
+import { bagBatch, bagBatchAnswer, bagList, bagQuery, bagReceipt, bagReceiptAnswer, bagSwap, bagsChanged, bagsExpected, bagsMissing, clashChoice } from '../../../shared/contracts/bags.ts';
 import { conflictChoice, conflictList } from '../../../shared/contracts/conflicts.ts';
 import { fieldPhotoView } from '../../../shared/contracts/fieldPhotos.ts';
 import { blankLabels, crewSheet, daySheet, ofBlock, ofBlockOrPlan, roundLabels, whoseWalk } from '../../../shared/contracts/queries.ts';
@@ -28,7 +28,8 @@ export const field: Operations = belowEstate({
   'get /bags': { does: 'Bags with where they stand: expected, here, missing, extra', query: bagQuery, answer: bagList },
   'post /bags': { does: 'Store bags closed in the row; may be repeated; a label used twice is a conflict', body: bagBatch, answer: bagBatchAnswer },
   'post /bags/received': { does: 'Take bags in at the lab by their labels', body: bagReceipt, answer: bagReceiptAnswer },
-  'post /bags/missing': { does: 'Say that bags are not at the lab', body: bagsMissing, status: 204 },
+  'post /bags/missing': { does: 'Say that bags are not at the lab', body: bagsMissing, answer: bagsChanged },
+  'post /bags/expected': { does: 'Take back that bags are missing: they are on their way again', body: bagsExpected, answer: bagsChanged },
   'post /bags/swap': { does: 'Exchange the labels of two bags, with their results, for a reason', body: bagSwap, status: 204 },
   'post /bags/:bagId/settle': { does: 'Settle a label that is on two bags', body: clashChoice, status: 204 },
   'post /bags/:bagId/reopen': { does: 'Take a mistaken answer to a label on two bags back', status: 204 },

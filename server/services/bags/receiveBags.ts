@@ -1,3 +1,5 @@
+import type { Transaction } from 'objection';
+import type { BagsMissing } from '../../../shared/contracts/bags.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Missing } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
@@ -33,17 +35,45 @@ export async function receiveBags(access: Access, codes: readonly string[], now:
   });
 }
 
-/** Says that bags are not here: expected ones that did not come, or ones that were ticked by mistake. */
-export async function reportMissing(access: Access, bagIds: readonly string[], now: Date): Promise<void> {
+/**
+ * Says that bags are not here: expected ones that did not come, or ones that were ticked by mistake. With `ifExpected` a bag
+ * that somebody took in meanwhile stays where it is. Answers the bags that are missing by this.
+ */
+export async function reportMissing(access: Access, { bagIds, ifExpected }: BagsMissing, now: Date): Promise<string[]> {
   const { estateId, personId } = access;
-  await Bag.transaction(async (trx) => {
-    const bags = await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).forUpdate();
-    if (bags.length !== new Set(bagIds).size) throw new Missing(say('unknownBags'));
+  return Bag.transaction(async (trx) => {
+    const named = await namedBags(trx, estateId, bagIds);
+    const bags = ifExpected ? named.filter(isExpected) : named;
+    if (bags.length === 0) return [];
+    const ids = bags.map(({ id }) => id);
     const unsent = bags.find(({ closedAt }) => closedAt === null);
     if (unsent) throw new Clash('neverExpected', say('neverExpected', { code: unsent.code }));
-    const measured = await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', bagIds).first();
+    const measured = await Reading.query(trx).where({ estateId, source: 'lab' }).whereIn('bagId', ids).first();
     if (measured) throw new Clash('measured', say('bagHasResults', { code: bags.find(({ id }) => id === measured.bagId)!.code }));
-    await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).patch({ state: 'closed', receivedAt: null, receivedBy: null, missingAt: now, missingBy: personId });
-    await writeAudit(trx, access, { action: 'bags.missing', subjectType: 'bags', subjectId: estateId, subjectName: bags.map(({ code }) => code).join(', ').slice(0, 200), after: { count: bags.length } });
+    await Bag.query(trx).where({ estateId }).whereIn('id', ids).patch({ state: 'closed', receivedAt: null, receivedBy: null, missingAt: now, missingBy: personId });
+    await writeAudit(trx, access, { action: 'bags.missing', subjectType: 'bags', subjectId: estateId, subjectName: codesOf(bags), after: { count: bags.length } });
+    return ids;
   });
 }
+
+/** Takes back that bags are missing: they are on their way again. One that was found meanwhile stays here. Answers the bags that are expected by this. */
+export async function expectAgain(access: Access, bagIds: readonly string[]): Promise<string[]> {
+  const { estateId } = access;
+  return Bag.transaction(async (trx) => {
+    const bags = (await namedBags(trx, estateId, bagIds)).filter(({ state, missingAt }) => state === 'closed' && missingAt !== null);
+    if (bags.length === 0) return [];
+    const ids = bags.map(({ id }) => id);
+    await Bag.query(trx).where({ estateId }).whereIn('id', ids).patch({ missingAt: null, missingBy: null });
+    await writeAudit(trx, access, { action: 'bags.expect', subjectType: 'bags', subjectId: estateId, subjectName: codesOf(bags), after: { count: bags.length } });
+    return ids;
+  });
+}
+
+async function namedBags(trx: Transaction, estateId: string, bagIds: readonly string[]): Promise<Bag[]> {
+  const bags = await Bag.query(trx).where({ estateId }).whereIn('id', bagIds).orderBy('code').forUpdate();
+  if (bags.length !== new Set(bagIds).size) throw new Missing(say('unknownBags'));
+  return bags;
+}
+
+const isExpected = ({ state, missingAt, clashesWith }: Bag) => state === 'closed' && missingAt === null && clashesWith === null;
+const codesOf = (bags: readonly Bag[]) => bags.map(({ code }) => code).join(', ').slice(0, 200);

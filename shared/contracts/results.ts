@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id } from './common.ts';
+import { brixMethods } from './lots.ts';
 import { heatSum, visitConditions } from './weather.ts';
 
 /** A mean with the range that its readings give it. Half-width and sd are null where one reading cannot tell. */
@@ -101,6 +102,8 @@ export const ripeningView = resultsView.extend({
   series: z.array(ripeningSeries),
   /** How often the forecasts of this season beat "no change", and how often their band held, by measure. */
   record: z.array(z.object({ measure: z.string(), n: z.number().int(), better: z.number().int(), held: z.number().int(), few: z.boolean() })),
+  /** What the estate set for itself on the day shown: what an hour costs, and its way to potential alcohol. */
+  settings: z.object({ costPerHour: z.number(), currency: z.string(), alcoholMethod: z.enum(brixMethods) }),
   /** The day it is shown as of, or null for now. */
   knownOn: z.string().nullable(),
   /** First day from which changes of the vine census are kept, where that is after `knownOn`. */

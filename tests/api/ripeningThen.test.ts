@@ -56,7 +56,12 @@ describe('ripeness as it was known', () => {
     await owner.write('patch', `${base()}/measures/${id}`).send({ confidence: 0.9 });
     await owner.write('patch', `${base()}/measures/${id}`).send({ confidence: 0.99, margin: 0.2 });
 
+    await owner.write('put', `${base()}/alcohol-method`).send({ method: 'sugarTable' });
+    await owner.write('patch', base()).send({ settings: { costPerHour: 31 } });
+    await owner.write('patch', base()).send({ settings: { costPerHour: 40, currency: 'CHF' } });
+
     const now = await shown();
+    expect(now.settings).toEqual({ costPerHour: 40, currency: 'CHF', alcoholMethod: 'sugarTable' });
     expect(sugar(now)).toMatchObject({ n: 2, confidence: 0.99, margin: 0.2 });
     expect(sugar(now).mean).toBeCloseTo(23.2, 10);
     expect(now.conditions[0]).toMatchObject({ rainMm: 0, flags: [] });
@@ -64,6 +69,7 @@ describe('ripeness as it was known', () => {
 
     const then = await shown(dayAgo(2));
     expect(sugar(then)).toEqual(sugar(before));
+    expect(then.settings).toEqual({ costPerHour: 25, currency: 'EUR', alcoholMethod: 'brixFactor' });
     expect(then.measures).toEqual(before.measures);
     expect(then.conditions).toEqual(before.conditions);
     expect(then.heat!.sum).toBe(26);

@@ -3,6 +3,7 @@ import type { BrixMethod } from '../../../shared/contracts/lots.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
 import { loadBlockVines, loadBlockVinesAt, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { loadMeasures } from '../../ground/measuresAt.ts';
+import { loadSettings } from '../../ground/settingsAt.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
@@ -11,7 +12,6 @@ import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
-import { alcoholMethodOf } from './alcoholMethod.ts';
 import type { LotsThen } from './lotsThen.ts';
 import { zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
 
@@ -61,7 +61,7 @@ export async function loadBoardGround(estateId: string, scenario: { id: string; 
     }),
   );
   blocks.sort((a, b) => a.ground.block.name.localeCompare(b.ground.block.name, undefined, { numeric: true }));
-  return { season, lots, blocks, factors, measures, alcoholMethod: await alcoholMethodOf(estateId, then?.until ?? null) };
+  return { season, lots, blocks, factors, measures, alcoholMethod: (await loadSettings(estateId, then?.until ?? null)).alcoholMethod };
 }
 
 /** Zones in force, one set a block: now, or at a moment. */

@@ -13,6 +13,7 @@ import type { Estimate } from '../../../shared/sampling/precision.ts';
 import type { Access } from '../../access/access.ts';
 import { censusKnownFrom } from '../../ground/blockVines.ts';
 import { endOfEstateDay } from '../../ground/estateDay.ts';
+import { loadSettings } from '../../ground/settingsAt.ts';
 import { isFirm, type ZonedReading } from '../../ground/zonedReadings.ts';
 import type { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { WeatherDayRecord } from '../../models/WeatherDayRecord.ts';
@@ -52,6 +53,7 @@ export async function blockRipening(access: Access, blockId: string, options: Ri
   const weather = await weatherUntil(access.estateId, until);
   // Nothing is known of days ahead.
   const shownOn = options.knownOn && options.knownOn < options.today ? options.knownOn : options.today;
+  const { costPerHour, currency, alcoholMethod } = await loadSettings(access.estateId, until);
   const isOver = await isSeasonOver(access.estateId, season, shownOn);
   const made = loaded.measures.flatMap((measure) =>
     results.zones.map((zone) => seriesOf(measure, { zone: zone.number, values: results.values, readings: loaded.readings, isOver })).filter((made) => made !== null),
@@ -62,6 +64,7 @@ export async function blockRipening(access: Access, blockId: string, options: Ri
     seasons: await seasonsOfBlock(access.estateId, blockId),
     series: made.map(({ series }) => series),
     record: recordsOf(made),
+    settings: { costPerHour, currency, alcoholMethod },
     knownOn: options.knownOn ?? null,
     censusFrom: await censusKnownFrom(access.estateId, [loaded.ground.block], until),
     unchecked: { basis, n: all.readings.filter((reading) => reading.zone > 0 && reading.excludedReason === null && !isFirm(reading)).length },

@@ -24,12 +24,21 @@ export type NewSuggestion = z.infer<typeof newSuggestion>;
 
 const measure = z.enum(['brix', 'ph', 'ta']);
 
-const placedReason = z.object({ code: z.enum(['alone', 'alike']), distance: z.number().nullable(), elsewhere: z.number().nullable() });
+const overLimit = z.object({ code: z.enum(['overDay', 'overPress']), tonnes: z.number(), limit: z.number() });
+const tooBig = z.object({ code: z.literal('tooBig'), litres: z.number(), limit: z.number(), chance: z.number() });
+const againstReason = z.discriminatedUnion('code', [overLimit, tooBig, z.object({ code: z.literal('leavesLot'), measure, value: z.number() })]);
+export type AgainstReasonView = z.infer<typeof againstReason>;
+const placedReason = z.object({
+  code: z.enum(['alone', 'alike']),
+  distance: z.number().nullable(),
+  /** Missing in proposals made before it was kept. */
+  nearest: z.object({ lotName: z.string(), distance: z.number(), against: againstReason.nullable() }).nullable().optional(),
+});
 const leftOutReason = z.discriminatedUnion('code', [
-  z.object({ code: z.enum(['overDay', 'overPress']), tonnes: z.number(), limit: z.number() }),
+  overLimit,
   z.object({ code: z.literal('notRead'), measure }),
   z.object({ code: z.literal('outsideTarget'), measure, value: z.number() }),
-  z.object({ code: z.literal('tooBig'), litres: z.number(), limit: z.number(), chance: z.number() }),
+  tooBig,
   z.object({ code: z.literal('noTankLeft') }),
 ]);
 

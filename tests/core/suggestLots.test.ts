@@ -64,11 +64,26 @@ describe('suggested lots', () => {
     const tanks = [tank('T1', 9000), tank('T2', 9000)];
     const { lots } = await suggestLots({ zones, tanks, rules: rules(), limitSeconds: 5 });
     expect(lots.map((lot) => lot.zones).sort((a, b) => a[0]! - b[0]!)).toEqual([[0, 2], [1, 3]]);
-    const reason = whyPlaced(0, lots.find((lot) => lot.zones.includes(0))!, { zones, lots, rules: rules() });
-    // 0.1 °Brix from its own lot's mean of 24.1 and 2.95 from the other's, in spreads of 1 °Brix.
-    expect(reason).toMatchObject({ code: 'alike' });
+    const reason = whyPlaced(0, lots.find((lot) => lot.zones.includes(0))!, { zones, lots, tanks, rules: rules() });
+    // 0.1 °Brix from its own lot's mean of 24.1; with the two late ones the mean would be 22.033, 1.967 away. 9600 L do not fit 7200.
+    expect(reason).toMatchObject({ code: 'alike', nearest: { lot: lots.findIndex((lot) => lot.zones.includes(1)), against: { code: 'tooBig', limit: 7200 } } });
     expect(reason.distance).toBeCloseTo(0.1, 10);
-    expect(reason.elsewhere).toBeCloseTo(2.95, 10);
+    expect(reason.nearest!.distance).toBeCloseTo(1.9667, 4);
+    expect(reason.nearest!.against).toMatchObject({ litres: 9600 });
+  });
+
+  it('name what stands against the nearest other lot, and nothing where only the sum of all lots does', () => {
+    const zones = [zone('a', { tonnes: 4, brix: 23 }), zone('b', { tonnes: 4, brix: 25 }), zone('c', { tonnes: 4, brix: 22.9 })];
+    const tanks = [tank('T1', 20_000), tank('T2', 20_000)];
+    const [pair, single] = [[0, 1], [2]].map((of, tank): LotChoice => ({ zones: of, tank, cost: 0, tonnes: 4 * of.length, chanceOfFit: 1, chanceBelowMinimum: 0 }));
+    const against = (at: number, asked: ChoiceRules) => whyPlaced(at, at === 2 ? single! : pair!, { zones, lots: [pair!, single!], tanks, rules: asked }).nearest!;
+    // With c its mean would be 22.95 °Brix.
+    expect(against(0, rules())).toEqual({ lot: 1, distance: expect.closeTo(0.05, 10), against: null });
+    expect(against(0, rules({ dayTonnes: 7 })).against).toEqual({ code: 'overDay', tonnes: 8, limit: 7 });
+    // What would stay is b alone, at 25.
+    expect(against(0, rules({ targets: { brix: { low: 22, high: 24.5 } } })).against).toEqual({ code: 'leavesLot', measure: 'brix', value: 25 });
+    expect(against(2, rules({ dayTonnes: 9 })).against).toEqual({ code: 'overDay', tonnes: 12, limit: 9 });
+    expect(against(2, rules()).against).toBeNull();
   });
 
   it('honour the chance that a lot fits, not only its expected volume', () => {

@@ -59,9 +59,13 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: isPressed(own[0]!), earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));
   const placed = new Set(answer.lots.flatMap((lot) => lot.zones));
+  const whyHere = (zone: number, lot: LotChoice) => {
+    const { nearest, ...reason } = whyPlaced(zone, lot, { zones, lots: answer.lots, tanks, rules });
+    return { ...reason, nearest: nearest && { lotName: names[nearest.lot]!, distance: nearest.distance, against: nearest.against } };
+  };
   const suggestion: SuggestionView = {
     asked, madeOn: options.today, provedBest: answer.provedBest, groupings: answer.groupings, roomKnown: room.some(({ pickT, pressT }) => pickT !== null || pressT !== null),
-    lots: lots.map(({ lot }, at) => ({ lotName: names[at]!, tank: tanks[lot.tank]!.name, chanceOfFit: lot.chanceOfFit, pickOn: days[at] ?? null, zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyPlaced(zone, lot, { zones, lots: answer.lots, rules }) })) })),
+    lots: lots.map(({ lot }, at) => ({ lotName: names[at]!, tank: tanks[lot.tank]!.name, chanceOfFit: lot.chanceOfFit, pickOn: days[at] ?? null, zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyHere(zone, lot) })) })),
     leftOut: leftOut(placed),
   };
   return store(access, { live, kept, suggestion, made: lots.map(({ lot, own }, at) => ({ lot, own, name: names[at]!, pickOn: days[at] ?? null, tankId: tanks[lot.tank]!.id })) });

@@ -255,6 +255,16 @@ describe('KML', () => {
   });
 });
 
+describe('colours of KML', () => {
+  it('are those of the screen: own ones, else those of the number', async () => {
+    const abgr = (hex: string) => `66${hex.slice(5, 7)}${hex.slice(3, 5)}${hex.slice(1, 3)}`.toLowerCase();
+    const shown = seen.zones.map(({ number, colour }) => abgr(colour ?? zoneStyle(number, { count: 2 }).fill));
+    const text = (await bytesOf('kml')).toString('utf8');
+    expect([...text.matchAll(/<PolyStyle><color>(\w+)</g)].map(([, colour]) => colour)).toEqual(shown);
+    expect(new Set(shown).size).toBe(2);
+  });
+});
+
 describe('rows as lines', () => {
   const titles = ['row', 'from_vine', 'to_vine', 'zone', 'zone_name'];
 

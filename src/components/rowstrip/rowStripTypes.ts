@@ -1,6 +1,6 @@
 import type { ColourSet } from '../../lib/colours.ts';
 
-/** Vines counted from 1 at the start end of the row, both ends included. */
+/** Vines counted from 1 at the end where people begin, the left one, both ends included. */
 export interface VineRun {
   readonly from: number;
   readonly to: number;
@@ -11,7 +11,7 @@ export interface ZoneRun extends VineRun {
   readonly zone: number;
 }
 
-/** One row as the strip draws it. Rows come in row order. */
+/** One row as the strip draws it. Rows come in the order in which people count them. */
 export interface StripRow {
   readonly id: string;
   /** Number painted on the post. */

@@ -1,11 +1,16 @@
 import type { BlockRowView } from '../../../shared/contracts/rows.ts';
 import type { ZoneOperation } from '../../../shared/contracts/zonings.ts';
 import type { Format } from '../../lib/format.ts';
-import { placeInRow } from '../sampling/stripOfPlan.ts';
+import { runInRow, type Counting } from '../sampling/stripOfPlan.ts';
 
 interface Tools {
   readonly t: (key: string, named?: Record<string, unknown>, plural?: number) => string;
   readonly format: Format;
+}
+
+export interface RowsOfBlock {
+  readonly rows: readonly BlockRowView[];
+  readonly vineOneEnd: Counting['vineOneEnd'];
 }
 
 type GivenRows = Extract<ZoneOperation, { kind: 'giveRows' }>['rows'];
@@ -33,14 +38,14 @@ export function editSentence(operation: ZoneOperation, { t, format }: Tools): st
 }
 
 /** Which rows, vines or numbers it was, as the strip calls them; empty where the sentence says it all. */
-export function editPlace(operation: ZoneOperation, rows: readonly BlockRowView[], { t, format }: Tools): string {
+export function editPlace(operation: ZoneOperation, { rows, vineOneEnd }: RowsOfBlock, { t, format }: Tools): string {
   if (operation.kind === 'renumber') return format.list(operation.numbers.map(({ from, to }) => t('zones.effects.renumberedPair', { from, to })));
   const given: GivenRows = operation.kind === 'giveRows' ? operation.rows : operation.kind === 'splitAlongRow' ? [{ rowId: operation.rowId, from: null, to: null }] : [];
   const found = given.flatMap((part) => {
     const at = rows.findIndex(({ id }) => id === part.rowId);
     return at < 0 ? [] : [{ part, at, row: rows[at]! }];
   });
-  if (found.length === 1 && isPart(found[0]!.part)) return partWords(found[0]!, t);
+  if (found.length === 1 && isPart(found[0]!.part)) return partWords(found[0]!, { t, vineOneEnd });
   return format.list(neighbours(found.sort((a, b) => a.at - b.at)).map((group) => groupWords(group, t)));
 }
 
@@ -52,10 +57,10 @@ interface Found {
 
 const isPart = ({ from, to }: GivenRows[number]): boolean => from !== null || to !== null;
 
-function partWords({ part, row }: Found, t: Tools['t']): string {
-  const from = part.from === null ? 1 : placeInRow(row, part.from);
-  const to = part.to === null ? row.vineCount : placeInRow(row, part.to);
-  return `${t('rowstrip.oneRow', { row: row.label })}, ${t('rowstrip.vinesFromTo', { from, to })}`;
+function partWords({ part, row }: Found, { t, vineOneEnd }: { t: Tools['t']; vineOneEnd: RowsOfBlock['vineOneEnd'] }): string {
+  const first = row.pieces[0]?.firstVine ?? 1;
+  const run = runInRow(row, { from: part.from ?? first, to: part.to ?? first + row.vineCount - 1 }, vineOneEnd);
+  return `${t('rowstrip.oneRow', { row: row.label })}, ${t('rowstrip.vinesFromTo', run)}`;
 }
 
 /** Rows that stand beside each other, together. */

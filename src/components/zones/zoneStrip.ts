@@ -9,7 +9,8 @@ import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { rowsFromStored } from '../../../shared/geo/storedRows.ts';
 import { vineTable } from '../../../shared/geo/vines.ts';
 import type { StripChoice, StripRow } from '../rowstrip/rowStripTypes.ts';
-import { placeInRow, stripRows } from '../sampling/stripOfPlan.ts';
+import { chosenRuns } from '../rowstrip/stripLayout.ts';
+import { ordinalAt, runInRow, stripRows, type Counting } from '../sampling/stripOfPlan.ts';
 
 /** Rows of a block for the strip, with the zones of a zoning's labels: the same reading of vines as the server's. */
 export function zonedStripRows(block: BlockView, rows: readonly BlockRowView[], labels: Uint8Array, doubtful: ZoningDoubt['runs'] = []): StripRow[] {
@@ -23,8 +24,9 @@ export function zonedStripRows(block: BlockView, rows: readonly BlockRowView[], 
     const id = rows[run.rowIndex]!.id;
     runs.set(id, [...(runs.get(id) ?? []), { zone: run.label, from: run.fromOrdinal, to: run.toOrdinal }]);
   }
-  const drawn = stripRows(rows, runs as never, { start: block.startPostColour, end: block.endPostColour });
-  return drawn.map((row, at) => ({ ...row, doubtful: doubtful.filter(({ rowId }) => rowId === row.id).map(({ from, to }) => ({ from: placeInRow(rows[at]!, from), to: placeInRow(rows[at]!, to) })) }));
+  const drawn = stripRows(rows, runs as never, { posts: { start: block.startPostColour, end: block.endPostColour }, counting: block });
+  const byId = new Map(rows.map((row) => [row.id, row]));
+  return drawn.map((row) => ({ ...row, doubtful: doubtful.filter(({ rowId }) => rowId === row.id).map((run) => runInRow(byId.get(row.id)!, run, block.vineOneEnd)) }));
 }
 
 /** Patches below the smallest that can be worked, and zones with a strip too narrow: what a hand edit may have left. */
@@ -43,19 +45,14 @@ export function ownColoursOf(zones: readonly Pick<ZoneView, 'number' | 'colour'>
   return Object.fromEntries(zones.flatMap(({ number, colour }) => (colour ? [[number, colour]] : [])));
 }
 
-/** The rows or parts of rows that stand chosen, by permanent row and vine ordinals, as an edit asks for them. */
-export function chosenRows(choice: StripChoice, strip: readonly StripRow[], rows: readonly BlockRowView[]): Extract<ZoneOperation, { kind: 'giveRows' }>['rows'] {
-  return choice.rowIds.flatMap((rowId) => {
+/** The rows or parts of rows that stand chosen, by permanent row and vine ordinals, as an edit asks for them. `vineOneEnd`: where the strip begins. */
+export function chosenRows(choice: StripChoice, strip: readonly StripRow[], { rows, vineOneEnd }: { rows: readonly BlockRowView[]; vineOneEnd: Counting['vineOneEnd'] }): Extract<ZoneOperation, { kind: 'giveRows' }>['rows'] {
+  return chosenRuns(strip, choice).flatMap(({ rowId, from, to }) => {
     const row = rows.find(({ id }) => id === rowId);
-    const drawn = strip.find(({ id }) => id === rowId);
-    if (!row || !drawn) return [];
-    const first = row.pieces[0]?.firstVine ?? 1;
-    const step = drawn.lengthM / Math.max(1, drawn.vineCount);
-    const ordinal = (m: number) => Math.round((m - drawn.startOffsetM) / step - 0.5) + first;
-    const from = choice.fromM === null ? null : Math.max(first, ordinal(choice.fromM));
-    const to = choice.toM === null ? null : Math.min(first + drawn.vineCount - 1, ordinal(choice.toM));
-    if (from !== null && to !== null && from > to) return [];
-    return [{ rowId, from, to }];
+    if (!row) return [];
+    const ends = [choice.fromM === null ? null : from, choice.toM === null ? null : to];
+    const [first, last] = (vineOneEnd === 'start' ? ends : ends.reverse()).map((vine) => (vine === null ? null : ordinalAt(row, vine, vineOneEnd)));
+    return [{ rowId, from: first!, to: last! }];
   });
 }
 

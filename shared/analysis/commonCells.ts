@@ -1,7 +1,7 @@
 /**
  * Cells of one size for blocks whose cells differ: the finer block is looked at in the coarser cells, and what is found there
  * goes back onto its own. Coarser, not finer: averaging loses detail, dividing would make some up.
- * In: a block with its layers and readings. Out: the same on coarser cells, and the way back. Cost: one pass over the cells a layer.
+ * In: a block with its layers. Out: the same on coarser cells, and the way back. Cost: one pass over the cells a layer.
  */
 
 import { cellAt, cellCentre, gridOfOutline, type Cells, type Grid } from './grid.ts';
@@ -17,16 +17,12 @@ export function commonCellSizeM(blocks: readonly BlockInput[]): number {
 }
 
 /** The block on cells of `cellSizeM`, at least as coarse as its own; the block itself when they are its own. */
-export function onCellsOf(cellSizeM: number, block: BlockInput): BlockInput {
-  const { grid, layers, readings = [] } = block;
+export function onCellsOf(cellSizeM: number, block: Pick<BlockInput, 'grid' | 'layers'>): Pick<BlockInput, 'grid' | 'layers'> {
+  const { grid, layers } = block;
   if (isOfSize(grid, cellSizeM)) return block;
   const coarse = gridOfOutline(grid.outlineXY, grid.epsg, cellSizeM);
   const parts = coverOf(grid, coarse);
-  return {
-    grid: coarse,
-    layers: layers.map((layer) => ({ ...layer, cells: coarsened(layer, parts, coarse) })),
-    readings: readings.map((one) => ({ ...one, values: one.values.map((reading) => ({ ...reading, cell: reading.cell < 0 ? -1 : cellAt(coarse, cellCentre(grid, reading.cell)) })) })),
-  };
+  return { grid: coarse, layers: layers.map((layer) => ({ ...layer, cells: coarsened(layer, parts, coarse) })) };
 }
 
 /** Zones found on coarser cells, on the block's own: each cell takes those at its centre. Beyond the coarse outline the nearest, wholly doubtful. */

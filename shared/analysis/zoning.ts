@@ -7,6 +7,7 @@
  */
 
 import { polygonsArea } from '../geo/rings.ts';
+import { groupBy } from '../groupBy.ts';
 import { adviseLayers, compareEdges, edgeTask, layersToCompare, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import type { Grid } from './grid.ts';
@@ -24,11 +25,11 @@ import { decideWeights, prepareLayers, weightedColumns, type PreparedLayers } fr
 import { rateFits, type FitQuality } from './zoningQuality.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
 import { zoneCountOf } from './zoningStats.ts';
-import { stackBlocks, type StackedBlocks } from './zoningTogether.ts';
-import type { StageMark, ZoningInput, ZoningOptions, ZoningReadings, ZoningResult } from './zoningTypes.ts';
+import { stackBlocks, type BlockPart, type StackedBlocks } from './zoningTogether.ts';
+import type { BlockInput, StageMark, ZoningInput, ZoningOptions, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '6';
+export const ENGINE_VERSION = '7';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
@@ -109,7 +110,7 @@ export interface ZoningParts {
 /** Number of zones, polygons and figures from what was made and found. */
 export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
   const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
-  const followed = cleaned.map(stacked.ownPart).map((zones) => alongRows(zones, ground));
+  const followed = cleaned.map((zones) => alongRows(stacked.own, zones, options.borders));
   const own = followed.map(({ zones }) => zones);
   // A zone that one of several blocks lacks is no less a zone.
   const workable = workableNumbers(input.together?.length ? { zones: cleaned, grid: stacked.grid } : { zones: own, grid: input.grid }, options.smoothingM);
@@ -125,9 +126,9 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
   const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]! }));
   mark('statistics', 0.98);
-  // The zones as drawn, along the rows where that was asked for; of blocks zoned together only this one's are drawn.
-  const tested = input.together?.length ? cleaned : own;
-  const fruit = fruitCheck(tested[(chosenK > 1 ? chosenK : count.best) - 1]!, stacked.readings, options.seed);
+  // The zones as drawn in every block, along the rows where that was asked for.
+  const tested = (chosenK > 1 ? chosenK : count.best) - 1;
+  const fruit = fruitCheck(stacked.parts.map((part) => ({ block: part.block, zones: part === stacked.own ? own[tested]! : alongRows(part, cleaned[tested]!, options.borders).zones })), options.seed);
   mark('fruit', 1);
   return {
     engineVersion: ENGINE_VERSION,
@@ -149,20 +150,22 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   };
 }
 
-/** The zones with their borders along the rows, if that was asked for, and the share of vines that this puts elsewhere; doubts stay where they are. */
-function alongRows(zones: CellZones, { input: { grid, planting }, options: { borders } }: ZoningGround): { zones: CellZones; againstGround: number | null } {
+/** A block's zones with their borders along its rows, if that was asked for, and the share of vines that this puts elsewhere; doubts stay where they are. */
+function alongRows({ block: { grid, planting }, zonesOf }: BlockPart, ofAll: CellZones, borders: ZoningOptions['borders']): { zones: CellZones; againstGround: number | null } {
+  const zones = zonesOf(ofAll);
   if (borders === 'free' || !planting) return { zones, againstGround: null };
   const { cellLabels, wrongVines } = snapToRows({ grid, labels: zones.labels, ...planting }, { mode: borders, cutPenalty: CUT_PENALTY });
   return { zones: { ...zones, labels: cellLabels }, againstGround: wrongVines / planting.vines.count };
 }
 
-/** The readings with the zone each lies in; those outside the zones are left out. */
-function fruitCheck({ labels }: CellZones, readings: readonly ZoningReadings[], seed: number): FruitCheck {
-  const measures = readings.map(({ measure, values }) => ({
-    measure,
-    readings: values.flatMap(({ cell, row, value }) => ((labels[cell] ?? 0) > 0 ? [{ value, row, zone: labels[cell]! }] : [])),
-  }));
-  return checkOnFruit(measures, streamOf(seed, FRUIT_STREAM));
+/** The readings of all blocks, with the zone that each lies in; those outside the zones are left out. */
+function fruitCheck(blocks: readonly { readonly block: BlockInput; readonly zones: CellZones }[], seed: number): FruitCheck {
+  const zoned = blocks.flatMap(({ block: { readings = [] }, zones: { labels } }) =>
+    readings.map(({ measure, values }) => ({ measure, readings: values.flatMap(({ cell, row, value }) => ((labels[cell] ?? 0) > 0 ? [{ value, row, zone: labels[cell]! }] : [])) })),
+  );
+  const measures = [...groupBy(zoned, ({ measure }) => measure)].map(([measure, parts]) => ({ measure, readings: parts.flatMap(({ readings }) => readings) }));
+  // Whichever block asks: its own order would draw other random numbers.
+  return checkOnFruit(blocks.length > 1 ? measures.sort((a, b) => (a.measure < b.measure ? -1 : 1)) : measures, streamOf(seed, FRUIT_STREAM));
 }
 
 /**

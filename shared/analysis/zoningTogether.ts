@@ -1,7 +1,8 @@
 /**
  * Several blocks zoned as one, so that zones of one number are of one kind in all of them. Their grids are stacked in one plane,
  * so far apart that neither smoothing nor any comparison at a distance reaches from one to the next; what comes out is cut
- * apart again. Where their cells differ in size, all are looked at in the coarsest. In: the block itself and the others. Out: one grid with its layers and readings, and the place of the block.
+ * apart again. Where their cells differ in size, all are looked at in the coarsest. In: the block itself and the others. Out: one grid
+ * with its layers, and each block with the way back onto its own cells.
  * The order is that of the grids' names, so each of the blocks gets the same outcome whichever asks. Cost: a copy of the cells.
  */
 
@@ -10,23 +11,33 @@ import { AnalysisError } from './analysisError.ts';
 import { backOnto, commonCellSizeM, onCellsOf } from './commonCells.ts';
 import type { Cells, Grid } from './grid.ts';
 import type { CellZones } from './zoningFit.ts';
-import type { BlockInput, ZoningLayer, ZoningReadings } from './zoningTypes.ts';
+import type { BlockInput, ZoningLayer } from './zoningTypes.ts';
 
 export interface StackedBlocks {
   readonly grid: Grid;
   readonly layers: readonly ZoningLayer[];
-  readonly readings: readonly ZoningReadings[];
-  /** The block's own part of what was made of all, on its own cells. */
-  readonly ownPart: (zones: CellZones) => CellZones;
+  /** Every block, in an order that does not depend on which one asks. */
+  readonly parts: readonly BlockPart[];
+  /** The one of them that was asked about. */
+  readonly own: BlockPart;
+}
+
+export interface BlockPart {
+  readonly block: BlockInput;
+  /** The block's part of what was made of all, on its own cells. */
+  readonly zonesOf: (zones: CellZones) => CellZones;
 }
 
 export function stackBlocks(asked: BlockInput, askedWith: readonly BlockInput[]): StackedBlocks {
-  if (askedWith.length === 0) return { grid: asked.grid, layers: asked.layers, readings: asked.readings ?? [], ownPart: (zones) => zones };
+  if (askedWith.length === 0) {
+    const own = { block: asked, zonesOf: (zones: CellZones) => zones };
+    return { grid: asked.grid, layers: asked.layers, parts: [own], own };
+  }
   for (const block of askedWith) assertFits(asked, block);
   const cellSizeM = commonCellSizeM([asked, ...askedWith]);
-  const own = onCellsOf(cellSizeM, asked);
-  const { grid, layers } = own;
-  const blocks = [own, ...askedWith.map((block) => onCellsOf(cellSizeM, block))].sort((a, b) => (a.grid.key < b.grid.key ? -1 : 1));
+  const { grid, layers } = onCellsOf(cellSizeM, asked);
+  const whole = [asked, ...askedWith].map((block) => ({ block, onCells: onCellsOf(cellSizeM, block) })).sort((a, b) => (a.onCells.grid.key < b.onCells.grid.key ? -1 : 1));
+  const blocks = whole.map(({ onCells }) => onCells);
   const place = placesOf(blocks.map((block) => block.grid));
   const share = new Float32Array(place.cols * place.rows);
   const inside = new Uint8Array(share.length);
@@ -35,13 +46,11 @@ export function stackBlocks(asked: BlockInput, askedWith: readonly BlockInput[])
     put(inside, block.grid.inside, { block, place, at });
   });
   const stacked: Grid = { ...grid, key: blocks.map((block) => block.grid.key).join(' '), cols: place.cols, rows: place.rows, share, inside, outlineXY: blocks.flatMap((block): MultiPolygonXY => [...block.grid.outlineXY]) };
-  const start = place.firstRows[blocks.indexOf(own)]!;
-  return {
-    grid: stacked,
-    layers: layers.map((layer) => ({ ...layer, cells: stackedCells(layer.id, blocks, place) })),
-    readings: stackedReadings(blocks, place),
-    ownPart: ({ labels, doubt }) => backOnto(asked.grid, grid, { labels: cut(labels, { grid, cols: place.cols, start }), doubt: cut(doubt, { grid, cols: place.cols, start }) }),
-  };
+  const parts = whole.map(({ block, onCells }, at): BlockPart => {
+    const from = { grid: onCells.grid, cols: place.cols, start: place.firstRows[at]! };
+    return { block, zonesOf: ({ labels, doubt }) => backOnto(block.grid, from.grid, { labels: cut(labels, from), doubt: cut(doubt, from) }) };
+  });
+  return { grid: stacked, layers: layers.map((layer) => ({ ...layer, cells: stackedCells(layer.id, blocks, place) })), parts, own: parts.find(({ block }) => block === asked)! };
 }
 
 interface Places {
@@ -76,16 +85,6 @@ function stackedCells(id: string, blocks: readonly BlockInput[], place: Places):
   const cells = new Float32Array(place.cols * place.rows).fill(NaN);
   blocks.forEach((block, at) => put(cells, block.layers.find((layer) => layer.id === id)!.cells, { block, place, at }));
   return cells;
-}
-
-function stackedReadings(blocks: readonly BlockInput[], place: Places): ZoningReadings[] {
-  const measures = [...new Set(blocks.flatMap(({ readings = [] }) => readings.map(({ measure }) => measure)))].sort();
-  return measures.map((measure) => ({
-    measure,
-    values: blocks.flatMap(({ grid, readings = [] }, at) =>
-      readings.filter((one) => one.measure === measure).flatMap(({ values }) => values.map((reading) => ({ ...reading, cell: reading.cell < 0 ? -1 : (Math.floor(reading.cell / grid.cols) + place.firstRows[at]!) * place.cols + (reading.cell % grid.cols) }))),
-    ),
-  }));
 }
 
 function cut<Values extends Uint8Array | Float32Array>(from: Values, { grid, cols, start }: { grid: Grid; cols: number; start: number }): Values {

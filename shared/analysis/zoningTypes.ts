@@ -56,12 +56,12 @@ export interface BlockInput {
   readonly grid: Grid;
   readonly layers: readonly ZoningLayer[];
   readonly readings?: readonly ZoningReadings[];
+  /** Rows and vines of the block; needed for borders along them. */
+  readonly planting?: { readonly rows: RowsXY; readonly vines: VineTable };
 }
 
 export interface ZoningInput extends BlockInput {
   readonly options?: Partial<ZoningOptions>;
-  /** Rows and vines of the block; needed for borders along them. */
-  readonly planting?: { readonly rows: RowsXY; readonly vines: VineTable };
   /** Other blocks with the same layers, to be zoned as one with this block, on the coarsest cells of all; weights are those of this block. */
   readonly together?: readonly BlockInput[];
 }

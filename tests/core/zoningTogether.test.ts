@@ -6,6 +6,8 @@ import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
 import type { BlockInput } from '../../shared/analysis/zoningTypes.ts';
 import { polygonsArea } from '../../shared/geo/rings.ts';
+import { layRows } from '../../shared/geo/rowsLayout.ts';
+import { vineTable } from '../../shared/geo/vines.ts';
 
 const rectangle = (west: number, width: number, height: number) => gridOfOutline([[[[west, 0], [west + width, 0], [west + width, height], [west, height], [west, 0]]]], 32631, 3);
 
@@ -50,6 +52,37 @@ describe('blocks zoned together', () => {
   });
 });
 
+describe('blocks zoned together with borders along the rows', () => {
+  /** Rows 3 m apart. A bearing of 0 runs along the borders of zones, 90 across them. */
+  const planted = (own: BlockInput, rowBearingDeg: number): BlockInput => {
+    const rows = layRows(own.grid.outlineXY, { originXY: own.grid.outlineXY[0]![0]![0]!, gridBearingDeg: rowBearingDeg }, { rowSpacingM: 3, vineSpacingM: 1.5, headlandM: 0 });
+    return { ...own, planting: { rows, vines: vineTable(rows) } };
+  };
+  /** Sugar follows the east of the second block, at 60 places. */
+  const readings = (grid: Grid) => {
+    const random = seededRandom(9);
+    const cells = [...grid.inside.keys()].filter((cell) => grid.inside[cell] === 1).filter((_, at) => at % 41 === 0).slice(0, 60);
+    return [{ measure: 'brix', values: cells.map((cell) => ({ cell, row: null, value: ((3 * (cell % grid.cols)) / grid.cols >= 2 ? 24 : 21) + 0.3 * randomNormal(random) })) }];
+  };
+  const zoned = (rowBearingDeg: number, borders: 'free' | 'wholeRow') => {
+    const [here, there] = [planted(one, 0), planted({ ...other, readings: readings(other.grid) }, rowBearingDeg)];
+    const all = { ...options, borders };
+    return [makeZoning({ ...here, options: all, together: [there] }), makeZoning({ ...there, options: all, together: [here] })] as const;
+  };
+
+  it('are tested on fruit in the zones as each block draws them, whichever asks', () => {
+    for (const [bearing, borders, tested] of [[90, 'free', 60], [0, 'wholeRow', 60], [90, 'wholeRow', null]] as const) {
+      const [asked, along] = zoned(bearing, borders);
+      expect(asked.fruit).toEqual(along.fruit);
+      expect(asked.verdict).toEqual(along.verdict);
+      expect(along.candidates[2]!.zones.length).toBe(tested === null ? 1 : 2);
+      // Whole rows across the border lie all in the kind of ground that most of each row has: one zone, so nothing to compare.
+      if (tested === null) expect(asked.fruit).toEqual({ state: 'untested', tests: [] });
+      else expect(asked.fruit).toMatchObject({ state: 'agrees', tests: [{ measure: 'brix', n: tested }] });
+    }
+  });
+});
+
 describe('blocks of different cells', () => {
   const coarse = block(gridOfOutline(other.grid.outlineXY, 32631, 5), [0.7, 0.7, 0.5], 2);
   const [fineSide, coarseSide] = [makeZoning({ ...one, options, together: [coarse] }), makeZoning({ ...coarse, options, together: [one] })];
@@ -83,11 +116,10 @@ describe('coarser cells', () => {
 
   it('hold means weighted by area; by hand for 2 m in 3 m', () => {
     const fine = square(6, 2);
-    const { grid, layers, readings } = onCellsOf(3, { grid: fine, layers: [layer([1, 2, 3, 4, 5, 6, 7, 8, 9])], readings: [{ measure: 'brix', values: [{ cell: 0, row: null, value: 20 }, { cell: 8, row: null, value: 21 }, { cell: -1, row: null, value: 22 }] }] });
+    const { grid, layers } = onCellsOf(3, { grid: fine, layers: [layer([1, 2, 3, 4, 5, 6, 7, 8, 9])] });
     expect([grid.cols, grid.rows]).toEqual([2, 2]);
     // North-west: 1 whole, half of 2, half of 4, a quarter of 5, over 2.25: (1 + 1 + 2 + 1.25) / 2.25.
     [5.25, 8.25, 14.25, 17.25].forEach((sum, cell) => expect(layers[0]!.cells[cell]).toBeCloseTo(sum / 2.25, 5));
-    expect(readings![0]!.values.map(({ cell }) => cell)).toEqual([0, 3, -1]);
   });
 
   it('take the class with most ground, and pass over what is missing', () => {

@@ -43,14 +43,15 @@ export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<Zonin
   if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', say('outlineChangedSinceAsked', { block: ground.block.name }));
   const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));
   const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, borders, principalComponents } = options;
-  return { ...(await blockInput(zoning, ground, options)), together, ...(borders === 'free' ? {} : { planting: { rows: ground.rows, vines: ground.vines } }), options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true } };
+  return { ...(await blockInput(zoning, ground, options)), together, options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true } };
 }
 
 async function blockInput(zoning: Zoning, ground: BlockVines, options: ZoningRequestOptions): Promise<BlockInput> {
   const grid = gridOf(ground);
   const found = await loadBlockLayers(zoning.estateId, ground.block.id, options.layers.map(({ layerId }) => layerId));
   const layers = found.map((entry) => zoningLayer(entry, options.layers.find(({ layerId }) => layerId === entry.layer.id)!.weight));
-  return { grid, layers, readings: await fruitOf(zoning, ground, grid) };
+  const hasBordersAlongRows = options.borders !== 'free' && ground.vines.count > 0;
+  return { grid, layers, readings: await fruitOf(zoning, ground, grid), ...(hasBordersAlongRows ? { planting: { rows: ground.rows, vines: ground.vines } } : {}) };
 }
 
 /** The newest visit of each measure of fruit, up to the moment the zoning was asked for: of its own season, or of an earlier one where that has none yet. */

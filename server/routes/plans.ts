@@ -38,7 +38,7 @@ export function planRoutes(): Router {
   router.get('/plans', read, async (request, response) => {
     const { block } = ofBlock.parse(request.query);
     const items = await listPlans(accessOf(request), block ? { blockId: block } : {});
-    response.json({ items, total: items.length, zonings: await plannableZonings(accessOf(request)) });
+    response.json({ items, total: items.length, ...(await plannableZonings(accessOf(request))) });
   });
   router.post('/plans/day', read, async (request, response) => {
     response.json(await dayOfPlans(accessOf(request), dayQuestion.parse(request.body)));

@@ -110,6 +110,6 @@ export type PlanView = z.infer<typeof planView>;
 export const plannableZoning = z.object({ id, number: z.number().int(), blockId: id, blockName: z.string() });
 export type PlannableZoning = z.infer<typeof plannableZoning>;
 
-/** Plans of the estate, and the zones in force that a plan can be made on. */
-export const planList = z.object({ items: z.array(planSummary), total: z.number().int(), zonings: z.array(plannableZoning) });
+/** Plans of the estate, the zones in force that a plan can be made on, and the blocks that have none. */
+export const planList = z.object({ items: z.array(planSummary), total: z.number().int(), zonings: z.array(plannableZoning), withoutZones: z.array(z.object({ id, name: z.string() })) });
 export type PlanList = z.infer<typeof planList>;

@@ -2,7 +2,7 @@ import type { Point } from 'geojson';
 import type { z } from 'zod';
 import { planBasis, type PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import { planChoices } from '../../../shared/contracts/planChoices.ts';
-import type { PlannableZoning, PlanSummary, PlanView, walkFacts, zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import type { PlanList, PlanSummary, PlanView, walkFacts, zoneDrawFacts } from '../../../shared/contracts/plans.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
@@ -41,12 +41,13 @@ export async function listPlans(access: Access, filter: { zoningId?: string; blo
   return summariesOf(access, plans);
 }
 
-/** Zones that a plan can be made on: those in force, one a block. */
-export async function plannableZonings(access: Access): Promise<PlannableZoning[]> {
+/** Zones that a plan can be made on: those in force, one a block; and the blocks without any. */
+export async function plannableZonings(access: Access): Promise<Pick<PlanList, 'zonings' | 'withoutZones'>> {
   const { estateId } = access;
   const zonings = await Zoning.query().where({ estateId, state: 'live' }).whereNotNull('labels').select('id', 'number', 'name', 'blockId');
-  const blocks = await Block.query().where({ estateId }).whereNull('retiredAt').findByIds(zonings.map(({ blockId }) => blockId)).orderBy('name').select('id', 'name');
-  return blocks.flatMap((block) => zonings.filter(({ blockId }) => blockId === block.id).map(({ id, number }) => ({ id, number, blockId: block.id, blockName: block.name })));
+  const blocks = await Block.query().where({ estateId }).whereNull('retiredAt').orderBy('name').select('id', 'name');
+  const zoned = blocks.flatMap((block) => zonings.filter(({ blockId }) => blockId === block.id).map(({ id, number }) => ({ id, number, blockId: block.id, blockName: block.name })));
+  return { zonings: zoned, withoutZones: blocks.filter(({ id }) => zoned.every(({ blockId }) => blockId !== id)).map(({ id, name }) => ({ id, name })) };
 }
 
 /** `known` spares reading the block again where it was just read. */

@@ -85,7 +85,7 @@ export function pointFeatures(points: readonly MapPoint[]): FeatureCollection {
 }
 
 export function lineFeatures(lines: readonly MapLine[]): FeatureCollection {
-  return collection(lines.map((line) => feature(line.geometry, { id: line.id, kind: line.kind })));
+  return collection(lines.map((line) => feature(line.geometry, { id: line.id, kind: line.kind, stroke: line.stroke ?? 0, text: line.text ?? '' })));
 }
 
 interface ContourPlace {

@@ -30,6 +30,9 @@ const chosen: ExpressionSpecification = ['boolean', ['feature-state', 'chosen'],
 const kind = (name: string): ExpressionSpecification => ['==', ['get', 'kind'], name];
 const label = ['Label'];
 
+/** Strokes that tell routes apart without colour, in widths of the line: dash, gap and so on; empty is unbroken. */
+export const routeStrokes: readonly (readonly number[])[] = [[], [4, 2], [1, 1.5], [5, 1.5, 1, 1.5]];
+
 export function mapLayers(ink: MapInk): LayerSpecification[] {
   return [
     { id: 'land', type: 'background', paint: { 'background-color': ink.land } },
@@ -56,7 +59,8 @@ export function mapLayers(ink: MapInk): LayerSpecification[] {
     { id: 'ghost-line', type: 'line', source: 'ghosts', filter: ['all', ['get', 'chosen'], ['!', ['has', 'dots']]], paint: { 'line-color': ink.sky, 'line-width': 2, 'line-dasharray': [4, 2] } },
     { id: 'ghost-dots', type: 'circle', source: 'ghosts', filter: ['has', 'dots'], paint: { 'circle-radius': ['case', ['get', 'chosen'], 2.5, 1.5], 'circle-color': ['case', ['get', 'chosen'], ink.sky, ink.amber], 'circle-opacity': ['case', ['get', 'chosen'], 1, 0.7], 'circle-stroke-color': ink.ground, 'circle-stroke-width': ['case', ['get', 'chosen'], 1, 0] }, layout: { 'circle-sort-key': ['case', ['get', 'chosen'], 1, 0] } },
     { id: 'route-edge', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ground, 'line-width': 6 } },
-    { id: 'route', type: 'line', source: 'lines', filter: kind('route'), layout: { 'line-cap': 'round', 'line-join': 'round' }, paint: { 'line-color': ink.ink, 'line-width': 2.5 } },
+    ...routeStrokes.map((dashes, stroke): LayerSpecification => ({ id: `route-${stroke}`, type: 'line', source: 'lines', filter: ['all', kind('route'), ['==', ['get', 'stroke'], stroke]], layout: { 'line-join': 'round' }, paint: { 'line-color': ink.ink, 'line-width': 2.5, ...(dashes.length === 0 ? {} : { 'line-dasharray': [...dashes] }) } })),
+    { id: 'route-figures', type: 'symbol', source: 'lines', filter: ['all', kind('route'), ['!=', ['get', 'text'], '']], layout: { 'symbol-placement': 'line', 'symbol-spacing': 160, 'text-field': ['get', 'text'], 'text-font': label, 'text-size': 13, 'text-rotation-alignment': 'viewport' }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.ground, 'text-halo-width': 3 } },
     { id: 'row-numbers', type: 'symbol', source: 'rowEnds', minzoom: 17.5, layout: { 'text-field': ['get', 'label'], 'text-font': label, 'text-size': 11, 'text-anchor': 'center' }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.land, 'text-halo-width': 2 } },
     { id: 'pills', type: 'symbol', source: 'pills', minzoom: 13.5, layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'icon-ignore-placement': true } },
     { id: 'points', type: 'symbol', source: 'points', layout: { 'icon-image': ['get', 'image'], 'icon-allow-overlap': true, 'text-field': ['get', 'text'], 'text-font': label, 'text-size': 11, 'text-anchor': 'left', 'text-offset': [0.9, 0], 'text-optional': true }, paint: { 'text-color': ink.ink, 'text-halo-color': ink.ground, 'text-halo-width': 2 } },

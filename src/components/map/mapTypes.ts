@@ -57,6 +57,10 @@ export interface MapLine {
   readonly id: string;
   readonly geometry: LineString;
   readonly kind: 'route' | 'track' | 'water';
+  /** Which of the strokes of `routeStrokes` a route has; the first without. */
+  readonly stroke?: number;
+  /** Short text along it, such as the number of a walk. */
+  readonly text?: string;
 }
 
 /** Cells of one layer on one block's grid, row 0 at the north; NaN or no-class is left clear. */

@@ -50,7 +50,7 @@ describe('from results to the season’s review', () => {
     await page.getByRole('group', { name: /Chance that a lot fits/ }).getByText('50').click();
     await page.getByRole('button', { name: 'Propose', exact: true }).click();
     await page.getByText(/^Proposal of/).waitFor({ timeout: 60_000 });
-    await page.getByText(/spreads from its lot’s mean|alone: with what is near it/).first().waitFor();
+    await page.getByText(/spreads from its lot’s mean|alone in its lot/).first().waitFor();
     await expectAccessible(page);
     const live = await board(page, estateId);
     expect(live.lots.some(({ name }) => name.endsWith(' 1'))).toBe(false);

@@ -92,7 +92,8 @@ async function sendAll({ isChosen, isForOthers, now }: Sending): Promise<SendRes
     const batch = await markTried(wanted);
     if (batch.length === 0) continue;
     try {
-      sent += await settle(batch, await post(estateId, isForOthers ? batch.map(inTheirName) : batch, now()));
+      const answer = await post(estateId, isForOthers ? batch.map(inTheirName) : batch, now());
+      sent += await settle(batch, isForOthers ? withoutRefused(answer) : answer);
     } catch (error) {
       if (error instanceof HttpProblem) return { sent, reached: !error.isOffline };
       throw error;
@@ -123,6 +124,12 @@ function post(estateId: string, batch: readonly Entry[], now: Date): Promise<Bat
     readings: batch.flatMap(({ reading }) => (reading ? [{ ...reading, deviceTime: now.toISOString(), source: 'field' }] : [])),
     findings: batch.flatMap(({ finding }) => (finding ? [finding] : [])),
   }, { withinMs: patienceMs });
+}
+
+/** What is refused in somebody's name may be taken from themselves: it waits for them as before. */
+function withoutRefused({ outcomes, findings, ...rest }: BatchAnswer): BatchAnswer {
+  const isTaken = ({ state }: { state: string }) => state !== 'refused';
+  return { ...rest, outcomes: outcomes.filter(isTaken), findings: findings.filter(isTaken) };
 }
 
 /** Notes what the server said. A phone without room cannot, and asks again next time; what goes after the readings may make room. */

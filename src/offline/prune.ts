@@ -22,8 +22,8 @@ export async function pruneReceived(now: Date): Promise<number> {
   return oldEntries.length + oldBags.length + oldPhotos.length;
 }
 
-/** A pick is sent with its bag and has no answer of its own. */
-function isWithServer(entry: Entry, bags: readonly KeptBag[]): boolean {
+/** True where the server has what was typed. A pick is sent with its bag and has no answer of its own. */
+export function isWithServer(entry: Entry, bags: readonly KeptBag[]): boolean {
   if (entry.kind !== 'pick') return entry.received === 1;
   return bags.some(({ received, roundId, bag }) => received === 1 && roundId === entry.roundId && bag.vines.some(({ rowId, ordinal }) => rowId === entry.pick?.rowId && ordinal === entry.pick.ordinal));
 }

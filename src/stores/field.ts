@@ -17,7 +17,7 @@ import { patienceMs } from '../offline/patience.ts';
 import { addPhoto, allPhotos, sendPhotos } from '../offline/photoBox.ts';
 import { pruneReceived } from '../offline/prune.ts';
 import { tellOtherTabs, whenAnotherTabWrites } from '../offline/tabs.ts';
-import { totalWaiting } from '../offline/waiting.ts';
+import { besideOfOthers, totalWaiting } from '../offline/waiting.ts';
 
 interface Owner {
   estateId: string;
@@ -33,6 +33,8 @@ export const useFieldStore = defineStore('field', () => {
   const all = shallowRef<readonly Entry[]>([]);
   const waiting = ref(0);
   const others = ref(0);
+  /** Bags and photos of others, which only they can send. */
+  const othersBeside = ref(0);
   /** What lies on the phone has been looked at; before that nothing is said of it. */
   const isCounted = ref(false);
   /** The phone's store could not be opened just now, as on a full phone: what was typed before is there and cannot be shown. */
@@ -42,8 +44,8 @@ export const useFieldStore = defineStore('field', () => {
   const bags = shallowRef<readonly KeptBag[]>([]);
   /** Rounds that were closed on this phone and of which the office does not know yet. */
   const closedHere = shallowRef<ReadonlySet<string>>(new Set());
-  /** This phone was reported lost and holds nothing any more. */
-  const isEmptied = ref(false);
+  /** This phone was reported lost and emptied; how much stays on it because the office has not taken it. Null before that. */
+  const emptied = ref<number | null>(null);
   const isReady = ref<boolean | null>(null);
   let owner: Owner = { estateId: '', personId: '' };
   /** Typed and on its way into the phone's store: shown at the tap, so that the next tap is about the next vine. */
@@ -57,13 +59,13 @@ export const useFieldStore = defineStore('field', () => {
 
   async function count(): Promise<void> {
     const { personId } = owner;
-    const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), allPhotos(personId), bagsOfPerson(personId), closingsOf(personId)]), null);
+    const held = await orNothing(Promise.all([totalWaiting(personId), waitingOfOthers(personId), allEntries(personId), allPhotos(personId), bagsOfPerson(personId), closingsOf(personId), besideOfOthers(personId)]), null);
     // A store that cannot be read holds nothing that could be counted; the screens say so.
     isUnreadable.value = held === null;
     if (held === null) return;
-    const [mine, theirs, listed, taken, closed, closings] = held;
+    const [mine, theirs, listed, taken, closed, closings, beside] = held;
     // All at once: a count that runs ahead of its list would say that nothing waits beside what still does.
-    [waiting.value, others.value, all.value, photos.value, bags.value] = [mine, theirs, listed, taken, closed];
+    [waiting.value, others.value, othersBeside.value, all.value, photos.value, bags.value] = [mine, theirs, beside, listed, taken, closed];
     closedHere.value = new Set(closings.map(({ roundId }) => roundId));
     isCounted.value = true;
     if (round.value) await show(round.value.id);
@@ -219,7 +221,7 @@ export const useFieldStore = defineStore('field', () => {
 
   /** Tells the office how this phone stands, at most once a minute; a phone that was reported lost empties itself once all is received. */
   async function checkIn(): Promise<void> {
-    const state = `${waiting.value} ${others.value} ${isReady.value}`;
+    const state = `${waiting.value} ${others.value} ${othersBeside.value} ${isReady.value}`;
     // Nobody is told that nothing waits by a phone that cannot look.
     if (owner.estateId === '' || isUnreadable.value || (state === checkedIn.state && Date.now() - checkedIn.at < 60_000)) return;
     const answer = await tellOffice();
@@ -230,11 +232,11 @@ export const useFieldStore = defineStore('field', () => {
       await sendOthers();
       await tellOffice();
     }
-    isEmptied.value = (await unlessStoreFails(emptyPhone(owner.personId).then(() => true))) ?? false;
+    emptied.value = await unlessStoreFails(emptyPhone());
   }
 
   function tellOffice(): Promise<PhoneAnswer | null> {
-    const facts = { deviceId: deviceId(), waiting: waiting.value + others.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
+    const facts = { deviceId: deviceId(), waiting: waiting.value + others.value + othersBeside.value, isReady: isReady.value, deviceTime: new Date().toISOString() };
     return unlessRefused(() => http.post<PhoneAnswer>(`/api/estates/${owner.estateId}/phones/check-in`, facts, { withinMs: patienceMs }));
   }
 
@@ -243,5 +245,5 @@ export const useFieldStore = defineStore('field', () => {
     void checkIn();
   }
 
-  return { rounds, listedAt, round, entries, all, waiting, others, isCounted, isUnreadable, isSending, photos, bags, closedHere, isEmptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
+  return { rounds, listedAt, round, entries, all, waiting, others, othersBeside, isCounted, isUnreadable, isSending, photos, bags, closedHere, emptied, begin, count, recallWork, loadWork, openRound, refreshRound, tellStart, closeRound, reopenRound, record, find, pick, undo, photograph, send, sendOthers, noteReady };
 });

@@ -9,20 +9,23 @@ export interface Office {
   estateId: string;
   get: <T>(path: string) => Promise<T>;
   post: <T>(path: string, body?: object) => Promise<T>;
+  put: <T>(path: string, body?: object) => Promise<T>;
 }
 
 export async function openOffice(app: Application, role: string): Promise<Office> {
   const { page, context, estateId } = await app.signIn(role);
   const base = `${app.url}/api/estates/${estateId}`;
   const token = ((await (await page.request.get(`${app.url}/api/session`)).json()) as { csrfToken: string }).csrfToken;
+  const write = async <T>(method: string, path: string, body: object = {}): Promise<T> => {
+    const answer = await page.request.fetch(base + path, { method, data: body, headers: { 'x-csrf-token': token } });
+    if (!answer.ok()) throw new Error(`${path}: ${await answer.text()}`);
+    return (answer.status() === 204 ? undefined : await answer.json()) as T;
+  };
   return {
     page, context, estateId,
     get: async <T>(path: string) => (await (await page.request.get(base + path)).json()) as T,
-    post: async <T>(path: string, body: object = {}) => {
-      const answer = await page.request.post(base + path, { data: body, headers: { 'x-csrf-token': token } });
-      if (!answer.ok()) throw new Error(`${path}: ${await answer.text()}`);
-      return (answer.status() === 204 ? undefined : await answer.json()) as T;
-    },
+    post: (path, body) => write('POST', path, body),
+    put: (path, body) => write('PUT', path, body),
   };
 }
 
@@ -34,11 +37,16 @@ export async function openPhone(app: Application, crew: { code: string; name: st
   await page.goto(`${app.url}/crew`);
   await page.getByLabel('Crew code').fill(crew.code);
   await page.getByRole('button', { name: 'Go on' }).click();
-  await page.getByRole('button', { name: crew.name }).click();
-  await page.getByLabel('PIN').fill(crew.pin);
+  await enterAs(page, crew);
+  return { page, context };
+}
+
+/** Signs in at the door of a phone that knows its crew, and waits until it is ready for the row. */
+export async function enterAs(page: Page, { name, pin }: { name: string; pin: string }): Promise<void> {
+  await page.getByRole('button', { name }).click();
+  await page.getByLabel('PIN').fill(pin);
   await page.getByRole('button', { name: 'Sign in' }).click();
   await page.getByText('Ready for the row').waitFor();
-  return { page, context };
 }
 
 /** Begins the walk, puts the day's safety card away and keeps the phone's place to oneself. */

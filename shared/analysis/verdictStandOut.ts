@@ -142,13 +142,19 @@ export interface Shown {
   readonly share: number;
 }
 
+/** Number of the part at a cell of the zones' own finer grid, 0 where nothing stands out. */
+export function partsOn({ parts, width, cellSizeM }: Pick<StandingOut, 'parts' | 'width' | 'cellSizeM'>, grid: Grid): (cell: number) => number {
+  const side = Math.round(cellSizeM / grid.cellSizeM);
+  return (cell) => parts[Math.floor(Math.floor(cell / grid.cols) / side) * width + Math.floor((cell % grid.cols) / side)]!;
+}
+
 /**
  * Among the workable numbers the one whose zones show most of the parts, the smaller where several show as much: each zone but one
  * is made of parts, by Jaccard's coefficient as far as Hennig trusts a cluster to be found again. Null when none does.
  */
-export function zonesThatShow({ parts, width, cellSizeM, areas }: StandingOut, grid: Grid, zones: readonly { readonly k: number; readonly labels: Labels }[]): Shown | null {
-  const side = Math.round(cellSizeM / grid.cellSizeM);
-  const partAt = (cell: number) => parts[Math.floor(Math.floor(cell / grid.cols) / side) * width + Math.floor((cell % grid.cols) / side)]!;
+export function zonesThatShow(ground: StandingOut, grid: Grid, zones: readonly { readonly k: number; readonly labels: Labels }[]): Shown | null {
+  const { areas } = ground;
+  const partAt = partsOn(ground, grid);
   let best: Shown | null = null;
   for (const { k, labels } of zones) {
     const { counts, columns } = crossTable(Uint8Array.from(labels, (_, cell) => partAt(cell)), labels);

@@ -13,6 +13,7 @@ import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import type { Grid } from './grid.ts';
 import { allReachWidth } from './labelsWidth.ts';
 import { polygonise } from './polygonise.ts';
+import { standOutGround } from './standOutGround.ts';
 import { withStandOut, zonesThatShow } from './verdictStandOut.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
@@ -119,7 +120,8 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     count: adviseZoneCount({ ...evidence, stability: new Map(quality.map((row) => [row.k, row.stability])), workable }),
     shownBy: (ground) => zonesThatShow(ground, stacked.grid, workable.map((k) => ({ k, labels: cleaned[k - 1]!.labels }))),
   });
-  const advisedK = verdict.verdict === 'one' || verdict.reasons.some(({ code }) => code === 'stands-out-apart') ? 1 : count.best;
+  const isApart = verdict.reasons.some(({ code }) => code === 'stands-out-apart');
+  const advisedK = verdict.verdict === 'one' || isApart ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
@@ -138,6 +140,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
     advisedWeights: withEdges(ground.advised, edges),
     verdict: withFruit(verdict, fruit),
+    standsOut: isApart && evidence.standingOut ? standOutGround(evidence.standingOut, { whole: cleaned[0]!, stacked }) : null,
     fruit,
     advisedK,
     bestSeveral: count.best,

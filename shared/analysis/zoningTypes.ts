@@ -150,6 +150,8 @@ export interface ZoningResult {
   readonly weights: readonly { readonly layerId: string; readonly weight: number }[];
   readonly advisedWeights: readonly LayerAdvice[];
   readonly verdict: VerdictResult;
+  /** Ground that stands out and that no number of zones shows, with the verdict that says so. */
+  readonly standsOut: MultiPolygonLonLat | null;
   readonly fruit: FruitCheck;
   /** Number of zones that the evidence speaks for: 1 when the verdict is one. */
   readonly advisedK: number;

@@ -94,6 +94,8 @@ export const zoningView = z.object({
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),
   isJudged: z.boolean(),
   reasons: z.array(reason),
+  /** Ground that stands out and that no number of zones shows; null without such ground, and for runs of before. */
+  standsOut: multiPolygonGeometry.nullable(),
   alsoOffer: z.array(z.number().int()),
   evidence: z.array(evidenceRow),
   differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),

@@ -5,6 +5,8 @@ import { seededRandom } from '../../shared/analysis/random.ts';
 import { evidenceField } from '../../shared/analysis/verdictField.ts';
 import { groundThatStandsOut, zonesThatShow } from '../../shared/analysis/verdictStandOut.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
+import { polygonsArea, polygonsCentroid } from '../../shared/geo/rings.ts';
+import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { added, smoothField, whiteField } from '../bench/simulatedFields.ts';
 
@@ -46,9 +48,20 @@ describe('a strip of five rows and a corner of a twenty-fifth', () => {
 
   it('keep the block from being treated as one when no number of zones shows them', () => {
     const { grid, truth } = strangeBlock(140, 140, { stripM: 0, cornerM: 28 });
-    const { verdict, advisedK } = makeZoning({ grid, layers: layersOf(grid, truth, { levels: standOut(3), seed: 500 }), options: { seed: 0 } });
+    const { verdict, advisedK, standsOut } = makeZoning({ grid, layers: layersOf(grid, truth, { levels: standOut(3), seed: 500 }), options: { seed: 0 } });
     expect([verdict.verdict, advisedK, verdict.reasons[0]!.code]).toEqual(['test', 1, 'stands-out-apart']);
     expect(verdict.reasons.map(({ code }) => code)).not.toContain('no-structure');
+    // It is drawn where it lies: round the corner that was put there, in the north-west (rows of cells go south), on as much ground as the reason names.
+    const drawn = polygonsToUtm(standsOut!, grid.epsg);
+    const [x, y] = polygonsCentroid(drawn);
+    expect(Math.hypot(x - 14, y - (140 - 14))).toBeLessThan(6);
+    expect(Math.abs(polygonsArea(drawn) / 1e4 - verdict.reasons[0]!.figures.hectares!)).toBeLessThan(0.01);
+  });
+
+  it('draw nothing apart where zones show them or nothing stands out', () => {
+    const { grid, truth } = strangeBlock(140, 140, { stripM: 12.5, cornerM: 28 });
+    expect(makeZoning({ grid, layers: layersOf(grid, truth, { levels: standOut(6), seed: 500 }), options: { seed: 500 } }).standsOut).toBeNull();
+    expect(makeZoning({ grid, layers: layersOf(grid, truth, { levels: standOut(0), seed: 500 }), options: { seed: 500 } }).standsOut).toBeNull();
   });
 
   it('say nothing where one sensor has them alone, as a swath would', () => {

@@ -48,6 +48,13 @@ export function drawMap(page: Page, report: ZoneReport, box: Box): void {
   }
   trace(page, outline, toPaper);
   page.lineWidth(1.6).strokeColor(ink).stroke();
+  if (report.standsOut) {
+    trace(page, polygonsToUtm(report.standsOut, report.epsg), toPaper);
+    // Chalk under the dashes, so that they are seen on dark zones and in grey.
+    page.lineWidth(3).strokeColor('#FFFFFF').stroke();
+    trace(page, polygonsToUtm(report.standsOut, report.epsg), toPaper);
+    page.lineWidth(1.4).dash(4, { space: 3 }).strokeColor(ink).stroke().undash();
+  }
   for (const { number, at } of numberSpots(zones, toPaper)) drawNumber(page, number, at);
   const right = box.x + box.width;
   const [middleX, middleY] = polygonsCentroid(outline);

@@ -25,6 +25,8 @@ export interface ZoneReport {
   differences: readonly { layerId: string; lowest: number; highest: number; withinSd: number }[];
   zones: readonly ReportZone[];
   boundary: MultiPolygonLonLat;
+  /** Ground that stands out and that no number of zones shows. */
+  standsOut: MultiPolygonLonLat | null;
   epsg: number;
   cellSizeM: number;
   engineVersion: string;

@@ -34,10 +34,12 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   const body = await zonesReport({
     language: person.language in reportTexts ? (person.language as ReportLanguage) : 'en',
     units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
-    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, reasons, differences, engineVersion, seed,
+    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, differences, engineVersion, seed,
     numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
     layers: await layersOf(access, view),
     zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
+    reasons: reasons.flatMap((reason) => (reason.code === 'stands-out-apart' && view.standsOut ? [reason, { code: 'stands-out-where', about: null }] : [reason])),
+    standsOut: (view.standsOut?.coordinates ?? null) as unknown as MultiPolygonLonLat | null,
     boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
     smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa, borders: view.options.borders,
     standardise: view.options.standardise, principalComponents: view.options.principalComponents, together: view.withBlockNames,

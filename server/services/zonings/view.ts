@@ -1,5 +1,6 @@
 import type { MultiPolygon } from 'geojson';
 import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
+import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import type { Zone as TracedZone, ZoneDifference, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
@@ -33,6 +34,8 @@ interface StoredEvidence {
   fruitDays?: Record<string, string[]>;
   /** Zonings of before have none: theirs were the block's. */
   cellSizeM?: number;
+  /** Zonings of before have none. */
+  standsOut?: MultiPolygonLonLat | null;
 }
 
 interface StoredCandidate {
@@ -97,6 +100,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
     isJudged: verdict?.isJudged ?? false,
     reasons: (verdict?.reasons ?? []).map((reason) => ({ ...reason, figures: { ...reason.figures } })),
+    standsOut: evidence?.standsOut ? { type: 'MultiPolygon', coordinates: evidence.standsOut as unknown as ZoneView['geometry']['coordinates'] } : null,
     alsoOffer: evidence?.alsoOffer ?? [],
     evidence: evidence ? await evidenceRows(access, evidence.rows, ground) : [],
     differences: stored ? [...stored.differences] : [],

@@ -55,6 +55,7 @@ export const en = {
     'stripes-evened': 'Stripes of the sensor were evened out first.',
     'stands-out': 'All of it is alike but for a small part that stands out by several deviations, and these zones show it.',
     'stands-out-apart': 'All of it is alike but for a small part that stands out by several deviations; no number of zones shows it.',
+    'stands-out-where': 'It is outlined with dashes on the map.',
     'one-layer': 'Only one measured layer speaks.',
     'no-measured-layer': 'No layer measured on the vines or in the soil was chosen.',
     'too-small': 'Under one hectare the block is too small to judge from layers alone.',

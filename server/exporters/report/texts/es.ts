@@ -55,6 +55,7 @@ export const es = {
     'stripes-evened': 'Antes se igualaron las bandas del sensor.',
     'stands-out': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas, y estas zonas la muestran.',
     'stands-out-apart': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas; ningún número de zonas la muestra.',
+    'stands-out-where': 'Está rodeada de una línea discontinua en el mapa.',
     'one-layer': 'Solo habla una capa medida.',
     'no-measured-layer': 'No se eligió ninguna capa medida en cepas o suelo.',
     'too-small': 'Por debajo de una hectárea la parcela es demasiado pequeña para juzgar solo por capas.',

@@ -55,6 +55,7 @@ export const fr = {
     'stripes-evened': 'Les bandes du capteur ont d’abord été lissées.',
     'stands-out': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types, et ces zones la montrent.',
     'stands-out-apart': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types ; aucun nombre de zones ne la montre.',
+    'stands-out-where': 'Elle est entourée d’un tireté sur la carte.',
     'one-layer': 'Une seule couche mesurée parle.',
     'no-measured-layer': 'Aucune couche mesurée sur les ceps ou dans le sol n’a été choisie.',
     'too-small': 'Sous un hectare, la parcelle est trop petite pour juger sur les couches seules.',

@@ -55,6 +55,7 @@ export const it = {
     'stripes-evened': 'Prima sono state appianate le strisce del sensore.',
     'stands-out': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard, e queste zone la mostrano.',
     'stands-out-apart': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard; nessun numero di zone la mostra.',
+    'stands-out-where': 'È contornata da un tratteggio sulla mappa.',
     'one-layer': 'Parla un solo strato misurato.',
     'no-measured-layer': 'Non è stato scelto alcuno strato misurato su ceppi o suolo.',
     'too-small': 'Sotto un ettaro l’appezzamento è troppo piccolo per giudicare dai soli strati.',

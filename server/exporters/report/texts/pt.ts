@@ -55,6 +55,7 @@ export const pt = {
     'stripes-evened': 'Primeiro alisaram-se as faixas do sensor.',
     'stands-out': 'Tudo se parece, menos uma pequena parte que se destaca em vários desvios-padrão, e estas zonas mostram-na.',
     'stands-out-apart': 'Tudo se parece, menos uma pequena parte que se destaca em vários desvios-padrão; nenhum número de zonas a mostra.',
+    'stands-out-where': 'Está contornada a tracejado no mapa.',
     'one-layer': 'Só fala uma camada medida.',
     'no-measured-layer': 'Não se escolheu nenhuma camada medida nas cepas ou no solo.',
     'too-small': 'Abaixo de um hectare a parcela é pequena demais para julgar só pelas camadas.',

@@ -102,6 +102,8 @@ export const zoningView = z.object({
   warnings: z.array(reason),
   /** The zones tested on readings of fruit: analysis of variance by zone and a shuffle within rows. */
   fruit: z.array(z.object({ measure: z.string(), on: z.array(z.string()), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
+  /** The zones that its edits begin with were changed by hand in the version it was taken up from. */
+  beginsByHand: z.boolean(),
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),

@@ -366,6 +366,8 @@ describe('the printed report', () => {
     expect(text).toContain('Zones of Côte à l’Éperon');
     expect(text).toContain('Worth zoning into two.');
     expect(text).toContain('“Été 2026”: draft');
+    // One drawn area; two names leave the ground as it was computed.
+    expect(text).toContain('(steps: 1)');
     expect(text).toContain('Nothing here is said about ripeness until fruit is tested.');
     expect(text).toContain('Inès Quillard answers for it: Seen on foot');
     expect(text).toMatch(/method version \S+, seed 1/);

@@ -512,7 +512,13 @@ describe('publishing', () => {
     expect(old.state).toBe('retired');
     const edited = await edit(copy.id, { kind: 'rename', zone: 2, name: 'Fond' });
     expect(edited.zones.map((zone) => [zone.name, zone.doubtfulShare])).toEqual([['Crête', old.zones[0]!.doubtfulShare], ['Fond', old.zones[1]!.doubtfulShare]]);
-    expect((await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body.zones).toHaveLength(3);
+    // Ground that was given by hand is where the next draft begins, and it says so; a number kept anew is as computed.
+    expect(old.beginsByHand).toBe(false);
+    await edit(copy.id, { kind: 'merge', zones: [1], into: 2 });
+    const again = await view((await manager.post(`${base()}/zonings/${copy.id}/restore`)).body.id as string);
+    expect([again.zones.length, again.beginsByHand]).toEqual([1, true]);
+    const anew = (await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body as ZoningView;
+    expect([anew.zones.length, anew.beginsByHand]).toEqual([3, false]);
   });
 
   it('compares two zonings vine by vine', async () => {

@@ -40,6 +40,8 @@ export interface ZoneReport {
   together: readonly string[];
   /** Steps by hand that changed ground or numbers since. */
   handEdits: number;
+  /** They begin with zones that were changed by hand in an earlier version. */
+  beginsByHand: boolean;
 }
 
 export interface ReportLayer {

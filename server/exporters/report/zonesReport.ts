@@ -31,7 +31,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   zoneTable(page, report, words);
   if (report.reasons.length > 0) {
     heading(page, words.texts.why as string);
-    paragraph(page, [...(report.handEdits > 0 ? [filled(words.texts.byHand as string, { n: report.handEdits })] : []), ...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
+    paragraph(page, [...byHandOf(report, words.texts), ...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
   }
   layerTable(page, report, words);
   method(page, report, words);
@@ -72,6 +72,12 @@ function verdictOf({ verdict, isJudged, advisedZones }: ZoneReport, texts: Repor
   const text = verdict === 'one' || count > 1 ? texts.verdict[verdict]! : texts.verdict[`${verdict}One`]!;
   const said = filled(text, { zones: texts.inWords[count - 1] ?? count });
   return isJudged ? said : `${said} ${texts.verdict.notJudged}`;
+}
+
+/** That the zones are not those that were computed, where that is so. */
+function byHandOf({ beginsByHand, handEdits }: ZoneReport, texts: ReportTexts): string[] {
+  if (beginsByHand) return [texts.byHandBefore as string];
+  return handEdits > 0 ? [filled(texts.byHand as string, { n: handEdits })] : [];
 }
 
 /** One sentence a reason; several measures that say the same are named in one. */

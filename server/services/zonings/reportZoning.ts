@@ -43,18 +43,19 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
     boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
     smoothingM: view.options.smoothingM, smallestPatchHa: view.options.smallestPatchHa, borders: view.options.borders,
     standardise: view.options.standardise, principalComponents: view.options.principalComponents, together: view.withBlockNames,
+    beginsByHand: view.beginsByHand,
     handEdits: asked.zones === null || asked.zones === zoning.chosenZones ? await handEdits(access, zoningId) : 0,
   });
   await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });
   return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };
 }
 
-/** Names and colours leave the ground as it was computed. */
-const harmless = new Set(['rename', 'recolour']);
+/** Names, numbers and colours leave the ground as it was computed. */
+const harmless = new Set(['rename', 'renumber', 'recolour']);
 
 async function handEdits(access: Access, zoningId: string): Promise<number> {
   const edits = await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId, undone: false }).select('operation');
-  return edits.filter(({ operation }) => !harmless.has((operation as { kind: string }).kind)).length;
+  return edits.filter(({ operation }) => !harmless.has((operation as { edit: { kind: string } }).edit.kind)).length;
 }
 
 async function layersOf(access: Access, view: ZoningView): Promise<ReportLayer[]> {

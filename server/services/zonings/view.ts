@@ -106,6 +106,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     differences: stored ? [...stored.differences] : [],
     warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
     fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, on: evidence?.fruitDays?.[measure] ?? [], n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
+    beginsByHand: showsKept && candidate !== undefined && !zoning.baseLabels!.equals(candidate.labels),
     shown: count,
     zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
     problem: job?.problem ?? null,

@@ -17,6 +17,7 @@ import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import type { ZoneOperation, ZoningView } from '../../shared/contracts/zonings.ts';
 import { gridOf } from '../../server/ground/blockVines.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { Block } from '../../server/models/Block.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Person } from '../../server/models/Person.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
@@ -297,6 +298,22 @@ describe('rows as lines', () => {
 });
 
 describe('the row table', () => {
+  it('begins where people begin to count: at row 1, and in each row at vine 1', async () => {
+    const lines = async () => Papa.parse<{ row: string; from_vine: string; to_vine: string }>((await bytesOf('rows')).toString('utf8').slice(1), { header: true, skipEmptyLines: true }).data;
+    const rowsOf = (of: { row: string }[]) => [...new Set(of.map(({ row }) => row))];
+    const { rowOneSide, vineOneEnd } = await Block.query().findById(plot.blockId).throwIfNotFound();
+    const before = await lines();
+    await Block.query().findById(plot.blockId).patch({ rowOneSide: rowOneSide === 'high' ? 'low' : 'high', vineOneEnd: vineOneEnd === 'end' ? 'start' : 'end' });
+    const after = await lines();
+    await Block.query().findById(plot.blockId).patch({ rowOneSide, vineOneEnd });
+    expect(rowsOf(after)).toEqual(rowsOf(before).reverse());
+    for (const row of rowsOf(after)) {
+      const runs = after.filter((line) => line.row === row).map(({ from_vine: from, to_vine: to }) => [Number(from), Number(to)] as const);
+      expect(runs[0]![0]).toBe(1);
+      runs.slice(1).forEach(([from], at) => expect(from).toBe(runs[at]![1] + 1));
+    }
+  });
+
   it('gives every vine of every row to its zone once', async () => {
     const text = (await bytesOf('rows')).toString('utf8');
     expect(text.startsWith('\uFEFFrow,from_vine,to_vine,zone,zone_name\r\n')).toBe(true);

@@ -56,13 +56,15 @@ async function layerCells(access: Access, view: ZoningView, zoning: Zoning): Pro
   return placed.map(({ layer, placed: on }) => ({ name: layer.name, unit: layer.unit, cells: decodeFloatCells(on.cells) }));
 }
 
-/** Runs along the rows in the numbers that the posts carry. */
+/** Runs along the rows in the numbers that the posts carry, from row 1 on and from vine 1 on. */
 function runsOf(ground: BlockVines, zones: readonly ExportedZone[], labels: Uint8Array): ExportedRun[] {
   const zoneOf = zonesOfVines(ground, { labels: Buffer.from(encodeCells(labels)), gridKey: gridOf(ground).key });
+  const { rowOneSide, vineOneEnd } = ground.block;
   return rowRuns(ground.vines, zoneOf)
     .filter(({ label }) => label > 0)
+    .sort((a, b) => (rowOneSide === 'high' ? b.rowIndex - a.rowIndex : a.rowIndex - b.rowIndex) || (vineOneEnd === 'end' ? b.fromOrdinal - a.fromOrdinal : a.fromOrdinal - b.fromOrdinal))
     .map(({ rowIndex, fromOrdinal, toOrdinal, label }) => {
-      const ends = [fromOrdinal, toOrdinal].map((ordinal) => vineLabel(ground.rows.rows[rowIndex]!, ordinal, ground.block.vineOneEnd));
+      const ends = [fromOrdinal, toOrdinal].map((ordinal) => vineLabel(ground.rows.rows[rowIndex]!, ordinal, vineOneEnd));
       return { rowLabel: ground.stored[rowIndex]!.label, fromVine: Math.min(...ends), toVine: Math.max(...ends), linesLonLat: stretches(ground, rowIndex, { fromOrdinal, toOrdinal }), zone: label, zoneName: zones.find(({ number }) => number === label)?.name ?? '' };
     });
 }

@@ -7,6 +7,7 @@
  */
 
 import { choleskyFactor } from './covarianceCholesky.ts';
+import { makeSound } from './covarianceSound.ts';
 import { lagSums, type LagSums, type MaskedPlane } from './covariance.ts';
 import type { PlaneTransform } from './covarianceFft.ts';
 
@@ -95,6 +96,8 @@ function factorised(transform: PlaneTransform, spectra: readonly (readonly Float
         matrix[b * layerCount + a] = value;
       }
     }
+    // Two layers are held to what they have by the line above.
+    if (layerCount > 2) makeSound(matrix, layerCount);
     choleskyFactor(matrix, layerCount, lower);
     for (let a = 0; a < layerCount; a++) for (let b = 0; b <= a; b++) factors[next++] = lower[a * layerCount + b]! * norm;
   }

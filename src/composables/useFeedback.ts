@@ -3,9 +3,11 @@ import { readStored, writeStored } from '../lib/deviceStore.ts';
 
 const isLoud = ref(readStored<boolean>('fieldSound') ?? true);
 let context: AudioContext | null = null;
+let isListening = false;
 
 /** Answers of the phone to a tap that can be felt and heard with gloves on: kept, or asks something. */
 export function useFeedback(): { isLoud: typeof isLoud; kept: () => void; asks: () => void; toggleSound: () => void } {
+  listenForTaps();
   return {
     isLoud,
     kept: () => answer(40, [880]),
@@ -19,9 +21,20 @@ export function useFeedback(): { isLoud: typeof isLoud; kept: () => void; asks: 
 
 function answer(pattern: number | number[], tones: readonly number[]): void {
   navigator.vibrate?.(pattern);
-  if (!isLoud.value || typeof AudioContext === 'undefined') return;
+  if (isLoud.value && context) tones.forEach((hertz, place) => beep(context!, hertz, place * 0.14));
+}
+
+/** Some browsers let a page sound only if it was begun while a finger tapped, and stop it when the phone sleeps: the answer comes after the store has taken the entry, which is too late. */
+function listenForTaps(): void {
+  if (isListening || typeof AudioContext === 'undefined') return;
+  isListening = true;
+  for (const act of ['click', 'keydown']) document.addEventListener(act, wake, { capture: true, passive: true });
+}
+
+function wake(): void {
+  if (!isLoud.value) return;
   context ??= new AudioContext();
-  tones.forEach((hertz, place) => beep(context!, hertz, place * 0.14));
+  if (context.state !== 'running') void context.resume().catch(() => undefined);
 }
 
 /** A short tone that swells and fades, so that the loudspeaker does not click. */

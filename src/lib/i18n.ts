@@ -10,8 +10,8 @@ export const languageNames: Readonly<Record<Language, string>> = { en: 'English'
 // Texts are found by name so that a new feature brings its own files and touches no list; code never is.
 const files = import.meta.glob<{ default: Record<string, unknown> }>('../locales/*/*.json');
 
-/** A date that ends in a stop of its own ("22 nov.") ends its sentence as well. */
-const oneStop = <Text>(text: Text): Text => (typeof text === 'string' ? (text.replace(/(?<=\p{L})\.\.(?=\s|$)/gu, '.') as Text) : text);
+/** A date that ends in a stop of its own ("22 nov.") ends its sentence as well. Without looking behind, which phones of 2022 cannot read: to them the whole file would be an error. */
+const oneStop = <Text>(text: Text): Text => (typeof text === 'string' ? (text.replace(/(\p{L})\.\.(?=\s|$)/gu, '$1.') as Text) : text);
 
 export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: oneStop });
 

@@ -149,7 +149,7 @@ async function openAs(name: string, number?: number): Promise<FieldDatabase> {
     },
     terminated: () => void (opened = null),
   });
-  expectAborts(unwrap(database));
+  expectAborts(unwrap(database), () => void (opened = null));
   return database;
 }
 
@@ -176,12 +176,19 @@ function addMissing(database: FieldDatabase): void {
 /**
  * Where a store breaks, a transaction ends twice: for the request that somebody waits for, and for the whole of it, where
  * often nobody does any more. The second must not come up as an error of the page; who awaits it is told all the same.
+ * `lost`: the system ended the connection without a word, as phones do to a page that slept; the next use opens it anew.
  */
-export function expectAborts(database: Pick<IDBDatabase, 'transaction'>): void {
+export function expectAborts(database: Pick<IDBDatabase, 'transaction'>, lost: () => void): void {
   const begin = database.transaction.bind(database);
+  const note = (error: unknown) => error instanceof DOMException && (error.name === 'InvalidStateError' || error.name === 'UnknownError') && lost();
   database.transaction = (...args: Parameters<IDBDatabase['transaction']>) => {
-    const transaction = begin(...args);
-    wrap(transaction).done.catch(() => undefined);
-    return transaction;
+    try {
+      const transaction = begin(...args);
+      wrap(transaction).done.catch(note);
+      return transaction;
+    } catch (error) {
+      note(error);
+      throw error;
+    }
   };
 }

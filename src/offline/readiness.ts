@@ -19,11 +19,11 @@ export function isReady({ hasRound, canWrite, hasProgram, hasSpace }: Readiness)
   return hasRound && canWrite && hasProgram && hasSpace;
 }
 
-/** Reads every round of the day back, writes a day's worth and reads it, and looks for the kept program: a test, not a wish. */
+/** Reads every round of the day back, writes a day's worth and reads it, and looks for the kept program: a test, not a wish. What a private window refuses to tell is an answer, not an error. */
 export async function checkReadiness(owner: { estateId: string; personId: string }, roundIds: readonly string[], now: Date): Promise<Readiness> {
   const kept = await Promise.all(roundIds.map((id) => orNothing(keptRound(owner, id), null)));
   const hasRound = kept.every((one) => one !== null && one.round.stops.every(({ rowId }) => one.round.rows.some(({ id }) => id === rowId)) && one.round.measures.length > 0);
-  return { hasRound, canWrite: await writesAndReads(), hasProgram: await programIsKept(), hasSpace: await spaceIsLeft(), isPersistent: await askToPersist(), checkedAt: now.toISOString() };
+  return { hasRound, canWrite: await writesAndReads(), hasProgram: await orNothing(programIsKept(), false), hasSpace: await orNothing(spaceIsLeft(), true), isPersistent: await orNothing(askToPersist(), null), checkedAt: now.toISOString() };
 }
 
 /** As much as a day of readings: a phone that still takes a line may have no room for the next. */

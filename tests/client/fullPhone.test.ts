@@ -137,13 +137,27 @@ describe('a transaction that breaks', () => {
     process.on('unhandledRejection', hear);
     const broken = new Breaking();
     const database = { transaction: () => broken as unknown as IDBTransaction };
-    expectAborts(database);
+    let lost = 0;
+    expectAborts(database, () => lost++);
     expect(database.transaction()).toBe(broken);
     broken.dispatchEvent(new Event('abort'));
     await new Promise((next) => setTimeout(next, 20));
     process.off('unhandledRejection', hear);
     expect(unheard).toEqual([]);
+    expect(lost).toBe(0);
     const { wrap } = await import('idb');
     await expect(wrap(broken as unknown as IDBTransaction).done).rejects.toThrow('no room');
+  });
+
+  it('of a connection that the system ended while the phone slept has the next use open it anew', () => {
+    const database = { transaction: (): IDBTransaction => { throw new DOMException('The connection is closing.', 'InvalidStateError'); } };
+    let lost = 0;
+    expectAborts(database, () => lost++);
+    expect(() => database.transaction()).toThrow('closing');
+    expect(lost).toBe(1);
+    const strange = { transaction: (): IDBTransaction => { throw new DOMException('No such part.', 'NotFoundError'); } };
+    expectAborts(strange, () => lost++);
+    expect(() => strange.transaction()).toThrow('No such part');
+    expect(lost).toBe(1);
   });
 });

@@ -51,6 +51,11 @@ describe('the script of the crew’s phone', () => {
     for (const language of languages) expect(firstScreen(language).size, language).toBeLessThanOrEqual(6);
   });
 
+  it('has no expression that looks behind, which is an error of the whole file to Safari before 16.4', () => {
+    const files = [...firstScreen('en'), ...neededBy([chunkOf('FieldWalkView'), chunkOf('FieldBagView'), chunkOf('FieldOutboxView')])];
+    expect(files.filter((file) => /\(\?<[=!]/u.test(source(file)))).toEqual([]);
+  });
+
   it('stays under it with the walk and the bag as well, which are fetched while one reads', () => {
     for (const language of languages) expect(sentBytes([...firstScreen(language), ...neededBy([chunkOf('FieldWalkView'), chunkOf('FieldBagView')])].filter((file, at, all) => all.indexOf(file) === at)), language).toBeLessThan(budgetBytes);
   });

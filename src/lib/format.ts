@@ -87,7 +87,9 @@ function dateText({ date, style, region, timeZone }: DateText): string {
   const bareDay = typeof date === 'string' && /^\d{4}-\d{2}-\d{2}$/.test(date);
   const options = { ...dateParts[style], ...(bareDay ? { timeZone: 'UTC' } : zone(timeZone)) };
   const text = new Intl.DateTimeFormat(region, options).format(new Date(date));
-  return style === 'weekday' ? text.replace(',', '') : text;
+  const plain = style === 'weekday' ? text.replace(',', '') : text;
+  // French counts the first of a month only: "le 1er septembre".
+  return region === 'fr-FR' ? plain.replace(/\b1 (?=\p{L})/u, '1er ') : plain;
 }
 
 function zone(timeZone: string | undefined): Intl.DateTimeFormatOptions {

@@ -11,9 +11,13 @@ export const languageNames: Readonly<Record<Language, string>> = { en: 'English'
 const files = import.meta.glob<{ default: Record<string, unknown> }>('../locales/*/*.json');
 
 /** A date that ends in a stop of its own ("22 nov.") ends its sentence as well. Without looking behind, which phones of 2022 cannot read: to them the whole file would be an error. */
-const oneStop = <Text>(text: Text): Text => (typeof text === 'string' ? (text.replace(/(\p{L})\.\.(?=\s|$)/gu, '$1.') as Text) : text);
+const oneStop = (text: string) => text.replace(/(\p{L})\.\.(?=\s|$)/gu, '$1.');
+const elided: Readonly<Record<string, string>> = { il: 'l’', Il: 'L’', del: 'dell’', Del: 'Dell’', dal: 'dall’', Dal: 'Dall’', al: 'all’', nel: 'nell’', sul: 'sull’' };
+/** Italian says "l’8" and "dall’11", as these numbers begin with a vowel. */
+const italianDays = (text: string) => text.replace(/(^|[^\p{L}])(il|Il|del|Del|dal|Dal|al|nel|sul) (?=(?:8|11)(?![\d.,]))/gu, (_, before: string, article: string) => before + elided[article]!);
+const settled = <Text>(text: Text): Text => (typeof text === 'string' ? ((i18n.global.locale.value === 'it' ? italianDays(oneStop(text)) : oneStop(text)) as Text) : text);
 
-export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: oneStop });
+export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: settled });
 
 /** What the phone in the row and the door need; the office's texts come with its first screen. vite.config.ts makes one chunk of each. */
 const phoneFeatures: ReadonlySet<string> = new Set(['base', 'conflicts', 'door', 'field', 'frame', 'measures', 'problem', 'rowstrip', 'safety']);

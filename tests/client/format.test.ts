@@ -78,6 +78,13 @@ describe('dates', () => {
     expect(createFormat({ language: 'en', units: 'metric', timeZone: 'Europe/Paris' }).time('2026-07-01T05:41:00Z')).toBe('07:41');
   });
 
+  it('French counts the first of a month, and no other day', () => {
+    const french = createFormat({ language: 'fr', units: 'metric' });
+    expect(french.date('2026-09-01', 'weekday')).toBe('mar. 1er sept.');
+    expect(french.date('2026-09-21', 'long')).toBe('lundi 21 septembre 2026');
+    expect(french.date('2026-09-01')).toBe('1er sept.');
+  });
+
   it('durations are hours and minutes', () => {
     expect(english.duration(460)).toBe(`7${thinSpace}h 40${thinSpace}min`);
     expect(english.duration(25)).toBe(`25${thinSpace}min`);

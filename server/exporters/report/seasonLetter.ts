@@ -46,7 +46,7 @@ export function letterParts(letter: SeasonLetter): string[][] {
   const nameOf = ({ measure, basis }: (typeof told)[number]) => texts.measure[(basis === 'weighed' || basis === 'bins' ? 'weighed' : measure) as keyof typeof texts.measure];
   const zones = [...told.map((measure) => filled(measure.differ === true ? texts.differ : texts.same, { measure: nameOf(measure), difference: differenceText(letter, measure) })), texts.verdict[block.verdict]];
   if (block.zones > 1 && block.oneLot) zones.push(texts.oneLot);
-  const cost = [filled(texts.cost, { hours: figure(letter, block.hours, 0), readings: figure(letter, block.readings, 0) })];
+  const cost = [block.readings === 0 ? texts.noReadings : filled(texts.cost, { hours: timeText(letter, block.hours), readings: filled(block.readings === 1 ? texts.reading : texts.readings, { n: figure(letter, block.readings, 0) }) })];
   if (block.sugar) {
     const { taken, needed } = block.sugar;
     cost.push(filled(taken > needed * (1 + worthAWord) ? texts.less : taken < needed * (1 - worthAWord) ? texts.more : texts.right, { taken, needed }));
@@ -84,11 +84,22 @@ function tonnesText(letter: SeasonLetter, tonnes: number, half: number | null): 
 }
 
 function figure({ language }: SeasonLetter, value: number, decimals: number): string {
-  return new Intl.NumberFormat(language === 'en' ? 'en-GB' : language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+  return new Intl.NumberFormat(regionOf(language), { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+}
+
+/** Whole hours, or minutes below two hours, with the unit as the language counts it ("1 minute", "5 hours"). */
+function timeText({ language }: SeasonLetter, hours: number): string {
+  const [value, unit] = hours < 2 ? [Math.max(1, Math.round(hours * 60)), 'minute'] : [Math.round(hours), 'hour'];
+  return new Intl.NumberFormat(regionOf(language), { style: 'unit', unit, unitDisplay: 'long' }).format(value);
+}
+
+function regionOf(language: LetterLanguage): string {
+  return language === 'en' ? 'en-GB' : language === 'pt' ? 'pt-PT' : language;
 }
 
 function dayText({ language, timeZone }: SeasonLetter, day: Date): string {
-  return new Intl.DateTimeFormat(language === 'en' ? 'en-GB' : language, { timeZone, day: 'numeric', month: 'long', year: 'numeric' }).format(day);
+  const text = new Intl.DateTimeFormat(regionOf(language), { timeZone, day: 'numeric', month: 'long', year: 'numeric' }).format(day);
+  return language === 'fr' ? text.replace(/^1 /, '1er ') : text;
 }
 
 function filled(template: string, facts: Record<string, string | number>): string {

@@ -46,7 +46,7 @@ export function noticeText(body: NoticeBody, how: { language: string; replacesNu
     ...(how.differences.length === 0 ? [] : [texts.changed, ...how.differences.map(({ what, before, after }) => `- ${fill(texts.was, { what: wordOf(texts, what), before: shown(what, before), after: shown(what, after) })}`), '']),
     fill(texts.pick, { lot: body.lotName, date: date(body.pickOn), time: body.fromTime }),
     fill(texts.zones, { zones: body.zones.map((zone) => `${zone.blockName} ${texts.zone} ${zone.number}${zone.rows ? `, ${fill(texts.rows, { rows: zone.rows.join(', ') })}` : ''}`).join('; ') }),
-    ...(body.tonnes === null ? [] : [fill(texts.tonnes, { value: tonnes(body.tonnes.value), half: tonnes(body.tonnes.halfWidth ?? 0) })]),
+    ...(body.tonnes === null ? [] : [fill(texts.tonnes, { tonnes: `${tonnes(body.tonnes.value)}${body.tonnes.halfWidth === null ? '' : ` ± ${tonnes(body.tonnes.halfWidth)}`} t` })]),
     ...(body.tank === null ? [] : [fill(texts.tank, { tank: body.tank })]),
     ...(body.note === '' ? [] : [body.note]),
     '',
@@ -62,7 +62,8 @@ function wordOf(texts: Texts, what: NoticeDifference['what']): string {
 
 /** A day as people say it, such as "Friday 12 September". */
 export function dateWords(language: string, day: string): string {
-  return new Intl.DateTimeFormat(language === 'en' ? 'en-GB' : language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+  const text = new Intl.DateTimeFormat(language === 'en' ? 'en-GB' : language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${day}T12:00:00Z`));
+  return language === 'fr' ? text.replace(/ 1 /, ' 1er ') : text;
 }
 
 /** Words around a notice on paper. */

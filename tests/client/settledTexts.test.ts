@@ -1,0 +1,25 @@
+import { afterAll, describe, expect, it } from 'vitest';
+import { i18n } from '../../src/lib/i18n.ts';
+
+const { global } = i18n;
+
+describe('texts as they are settled', () => {
+  afterAll(() => {
+    global.locale.value = 'en' as never;
+  });
+  const said = (language: string, day: string) => {
+    global.locale.value = language as never;
+    global.mergeLocaleMessage(language, { settled: { range: 'dal {day} al {day}, il {day}.' } } as never);
+    return global.t('settled.range', { day });
+  };
+
+  it('elides Italian articles before eight and eleven, and before no other number', () => {
+    expect(said('it', '8 set')).toBe('dall’8 set all’8 set, l’8 set.');
+    expect(said('it', '11 set')).toBe('dall’11 set all’11 set, l’11 set.');
+    expect(said('it', '18 set')).toBe('dal 18 set al 18 set, il 18 set.');
+  });
+
+  it('leaves Spanish as it is and ends no sentence twice', () => {
+    expect(said('es', '8 sept.')).toBe('dal 8 sept. al 8 sept., il 8 sept.');
+  });
+});

@@ -128,6 +128,17 @@ describe('the season letter', () => {
     expect(letterParts({ ...heldInOne, language: 'fr' })[0]![0]).toMatch(/a tenu pour 1 des 2 zones\.$/);
   });
 
+  it('joins article and preposition where the language does', () => {
+    const parts = ['vines', 'clusters', 'clusterWeight', 'growth', 'losses', 'rest'] as const;
+    for (const language of ['es', 'fr', 'it', 'pt'] as const) for (const part of parts) {
+      const said = letterParts({ ...letter, language, errorParts: [{ part, tonnes: 2 }] })[0]!.at(-1)!;
+      expect(said).toMatch(/2,0 t\)\.$/);
+      expect(said).not.toMatch(/ (de (el|le|les|o|a|os|as)|da (il|la|le|lo|i)) /);
+    }
+    expect(letterParts({ ...letter, language: 'es', errorParts: [{ part: 'vines', tonnes: 2 }] })[0]!.at(-1)).toBe('La mayor parte de la diferencia vino del recuento de cepas (2,0 t).');
+    expect(letterParts({ ...letter, language: 'pt' })[0]!.at(-1)).toMatch(/veio do que não voltou a ser medido/);
+  });
+
   it('does not pretend to a test that was not made', () => {
     expect(letterParts({ ...letter, zones: [], errorParts: [] })[0]![0]).toBe('Nothing was weighed for this block, so the forecast was not tested.');
   });

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { Component } from 'vue';
 import { noticeTexts } from '../../server/mail/noticeTexts.ts';
+import { noticeText } from '../../server/services/lots/noticeWords.ts';
 import { seasonLetterTexts } from '../../server/exporters/report/seasonLetterTexts.ts';
 import { brixMethods, type BrixMethod, type LotView } from '../../shared/contracts/lots.ts';
 import LotComposition from '../../src/components/lots/LotComposition.vue';
@@ -43,7 +44,11 @@ describe('the words beside estimates', () => {
         expect(alcoholUnit[method], language).toMatch(/% vol, /);
       }
       // After the figure comes a sentence of its own that says what it is not.
-      expect(noticeTexts[language].tonnes, language).toMatch(/\{value\} ± \{half\} t\. \p{L}.{30,}/u);
+      expect(noticeTexts[language].tonnes, language).toMatch(/\{tonnes\}\. \p{L}.{30,}/u);
+      const told = (halfWidth: number | null) => noticeText({ lotName: 'Marl red', pickOn: '2026-09-12', fromTime: '07:00', zones: [], tonnes: { ...figure(24.1, 8.3), halfWidth }, tank: null, note: '' }, { language, replacesNumber: null, differences: [] });
+      expect(told(8.3), language).toMatch(/ 24[.,]1 ± 8[.,]3 t\. \p{L}.{30,}/u);
+      // A spread that is not known is left away, never told as none.
+      expect(told(null), language).toMatch(/ 24[.,]1 t\. \p{L}.{30,}/u);
       expect(seasonLetterTexts[language].caution.length, language).toBeGreaterThan(40);
     }
   });

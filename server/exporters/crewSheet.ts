@@ -2,6 +2,7 @@ import PDFDocument from 'pdfkit';
 import QRCode from 'qrcode';
 import type { DayStop, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { restrictionsWithin } from '../../shared/field/entry.ts';
+import { latLonText } from '../../shared/geo/latLonText.ts';
 import { dayBounds } from '../../shared/season/dayBounds.ts';
 import { minutes } from './daySheet.ts';
 import { measureWords } from './measureWords.ts';
@@ -53,9 +54,10 @@ function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOption
   drawHead(pdf, part, options);
   const { startPostColour, endPostColour } = part.round;
   const strip = { x: edge, y: pdf.y + 6, width: pdf.page.width - 2 * edge, height: stripHeight };
-  drawSheetStrip(pdf, part.round, strip, { row: texts.row, start: texts.colours[startPostColour], end: texts.colours[endPostColour] });
+  if (isWithoutRows(part.round)) pdf.font('Helvetica').fontSize(10).text(texts.withoutRows, strip.x, strip.y, { width: strip.width });
+  else drawSheetStrip(pdf, part.round, strip, { row: texts.row, start: texts.colours[startPostColour], end: texts.colours[endPostColour] });
   const columns = columnsOf(pdf, part);
-  let y = drawTableHead(pdf, columns, { texts, y: strip.y + stripHeight + 8 });
+  let y = drawTableHead(pdf, columns, { texts, y: (isWithoutRows(part.round) ? pdf.y : strip.y + stripHeight) + 8 });
   for (const stop of part.round.stops) {
     if (y + lineHeight > pdf.page.height - edge - 16) {
       newPage();
@@ -137,7 +139,12 @@ interface Column {
   text: (stop: WalkStop, round: FieldRound, texts: Texts) => string;
   box?: (stop: WalkStop) => boolean;
   bold?: boolean;
+  /** Points; by default 15 in bold and 11 else. */
+  size?: number;
 }
+
+/** Vines without rows are found by coordinates. */
+const isWithoutRows = ({ stops }: FieldRound) => stops.some(({ place }) => place !== undefined);
 
 /** A box narrower than this is no box for a hand that wears a glove. */
 const leastBox = 42;
@@ -167,7 +174,13 @@ function boxesOf({ round, language }: SheetPart): Box[] {
 }
 
 function columnsOf(pdf: PDFKit.PDFDocument, part: SheetPart): Column[] {
-  const fixed: Omit<Column, 'x'>[] = [
+  const fixed: Omit<Column, 'x'>[] = isWithoutRows(part.round) ? [
+    { width: 26, head: () => '', text: ({ number }) => String(number) },
+    { width: 132, head: ({ place }) => place, text: ({ place }) => (place ? latLonText(place) : '-'), bold: true, size: 11 },
+    { width: 44, head: ({ placeNo }) => placeNo, text: ({ rowLabel, vineNumber }) => `${rowLabel}-${vineNumber}` },
+    { width: 34, head: ({ zone }) => zone, text: ({ zone }) => String(zone) },
+    { width: 108, head: ({ reserve }) => reserve, text: ({ reserve }) => (reserve?.place ? latLonText(reserve.place) : '-'), size: 9 },
+  ] : [
     { width: 26, head: () => '', text: ({ number }) => String(number) },
     { width: 58, head: ({ row }) => row, text: ({ rowLabel, rowLabelWas }) => (rowLabelWas ? `${rowLabel} (${rowLabelWas})` : rowLabel), bold: true },
     { width: 74, head: ({ from }) => from, text: fromWords },
@@ -209,12 +222,12 @@ function drawTableHead(pdf: PDFKit.PDFDocument, columns: readonly Column[], { te
 }
 
 function drawStop(pdf: PDFKit.PDFDocument, columns: readonly Column[], { stop, round, texts, y }: { stop: WalkStop; round: FieldRound; texts: Texts; y: number }): void {
-  for (const { x, width, text, box, bold } of columns) {
+  for (const { x, width, text, box, bold, size = bold ? 15 : 11 } of columns) {
     if (box) {
       if (box(stop)) pdf.rect(x + 3, y + 2, width - 6, lineHeight - 5).lineWidth(1.2).stroke();
       continue;
     }
-    pdf.font(bold ? 'Helvetica-Bold' : 'Helvetica').fontSize(bold ? 15 : 11).text(text(stop, round, texts), x + 2, y + (bold ? 7 : 9), { width: width - 4, lineBreak: false });
+    pdf.font(bold ? 'Helvetica-Bold' : 'Helvetica').fontSize(size).text(text(stop, round, texts), x + 2, y + (size > 11 ? 7 : 9), { width: width - 4, lineBreak: false });
   }
   pdf.moveTo(edge, y + lineHeight - 1).lineTo(pdf.page.width - edge, y + lineHeight - 1).lineWidth(0.5).stroke();
 }

@@ -49,7 +49,7 @@ async function findGround(estateId: string, blockId: string, trx?: TransactionOr
 
 function layOut({ block, stored }: { block: Block; stored: BlockRow[] }, known: readonly Pick<Vine, 'rowId' | 'ordinal' | 'state'>[]): BlockVines {
   const boundary = (block.boundary as MultiPolygon).coordinates as unknown as MultiPolygonLonLat;
-  const rows = rowsFromStored({ boundary, rowBearingDeg: block.rowBearingDeg, epsg: block.epsg }, stored as never);
+  const rows = rowsFromStored({ boundary, rowBearingDeg: block.rowBearingDeg, epsg: block.epsg, withoutRows: block.withoutRows }, stored as never);
   const vines = vineTable(rows);
   const rowIndexOf = new Map(stored.map((row, index) => [row.id, index]));
   const states: BlockVines['states'] = new Array<null>(vines.count).fill(null);

@@ -13,6 +13,8 @@ export class Block extends EstateModel {
   declare areaM2: number;
   declare bookAreaHa: number | null;
   declare epsg: number;
+  /** The rows are lines that only number places: vines are found by coordinates. */
+  declare withoutRows: boolean;
   declare rowBearingDeg: number;
   declare rowSpacingM: number;
   declare vineSpacingM: number;

@@ -16,6 +16,8 @@ const facts = {
   plantedYear: thisCenturyAndBefore.nullable(),
   /** Planted area in the estate's own book, kept beside the drawn one. */
   bookAreaHa: z.number().positive().max(1000).nullable(),
+  /** Vines stand without rows, or nobody knows them: lines along the direction only number places, which are found by coordinates. */
+  withoutRows: z.boolean(),
   /** Clockwise from true north; 210 and 30 are the same rows. */
   rowBearingDeg: z.number().min(0).lt(360),
   rowSpacingM: z.number().min(0.5).max(12),
@@ -41,6 +43,7 @@ export const newBlock = z.object({
   rootstock: facts.rootstock.default(''),
   plantedYear: facts.plantedYear.default(null),
   bookAreaHa: facts.bookAreaHa.default(null),
+  withoutRows: facts.withoutRows.default(false),
   rowBearingDeg: facts.rowBearingDeg.default(0),
   rowSpacingM: facts.rowSpacingM.default(2.5),
   vineSpacingM: facts.vineSpacingM.default(1.2),

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { postColour } from './blocks.ts';
-import { id } from './common.ts';
+import { id, lonLat } from './common.ts';
 import { planBasis } from './planBasis.ts';
 import { planChoices } from './planChoices.ts';
 
@@ -46,16 +46,17 @@ export const divisionQuestion = z.object({ choices: planChoices });
 
 export const planState = z.enum(['draft', 'locked', 'closed']);
 
+/** A vine as people in the block count it. `place` is given of a block without rows, where it is found by that. */
+export const vineWords = z.object({ rowId: id, rowLabel: z.string(), ordinal: z.number().int(), vineNumber: z.number().int(), place: lonLat.optional() });
+export type VineWords = z.infer<typeof vineWords>;
+
 export const drawnTarget = z.object({
   id,
-  rowId: id,
-  rowLabel: z.string(),
-  ordinal: z.number().int(),
-  vineNumber: z.number().int(),
+  ...vineWords.shape,
   zone: z.number().int(),
   drawOrder: z.number().int(),
   walkOrder: z.number().int().nullable(),
-  reserve: z.object({ rowId: id, rowLabel: z.string(), ordinal: z.number().int(), vineNumber: z.number().int() }).nullable(),
+  reserve: vineWords.nullable(),
   measures: z.array(z.string()),
   position: z.tuple([z.number(), z.number()]),
 });

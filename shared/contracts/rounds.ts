@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id, isoDate, lonLat } from './common.ts';
+import { vineWords } from './plans.ts';
 import { dayQuestion } from './planWalks.ts';
 import { postColour } from './blocks.ts';
 import { restrictionView } from './restrictions.ts';
@@ -66,11 +67,8 @@ export type RoundSummary = z.infer<typeof roundSummary>;
 export const walkStop = z.object({
   targetId: id,
   number: z.number().int(),
-  rowId: id,
-  rowLabel: z.string(),
+  ...vineWords.shape,
   rowLabelWas: z.string().nullable(),
-  ordinal: z.number().int(),
-  vineNumber: z.number().int(),
   zone: z.number().int(),
   drawOrder: z.number().int(),
   enterBy: z.enum(['start', 'end', 'gap', 'inside']),
@@ -79,7 +77,7 @@ export const walkStop = z.object({
   aheadFrom: z.enum(['entry', 'lastVine']),
   opensZone: z.boolean(),
   measures: z.array(z.string()),
-  reserve: z.object({ rowId: id, rowLabel: z.string(), ordinal: z.number().int(), vineNumber: z.number().int() }).nullable(),
+  reserve: vineWords.nullable(),
   /** Something of this target has been read at its reserve, so that the rest is read there too. */
   atReserve: z.boolean().optional(),
 });

@@ -33,6 +33,12 @@ export function roughPlace(row: RowEnds, place: PhonePlace): RoughPlace | null {
   return { centre: row.firstOrdinal + here.alongM / here.stepM, radius: reachOf(place) / here.stepM, awayM: Math.max(0, Math.hypot(here.acrossM, beyondM) - reachOf(place)) };
 }
 
+/** Metres on the ground from the middle of the circle to a place near by (plane at its latitude). */
+export function metresFrom({ lon, lat }: PhonePlace, [toLon, toLat]: readonly [number, number]): number {
+  const rad = Math.PI / 180;
+  return earthRadiusM * Math.hypot((toLat - lat) * rad, (toLon - lon) * rad * Math.cos(toLat * rad));
+}
+
 /** Zones of the vines that the circle covers, in order; none when it covers no vine of the block. */
 export function zonesNear(rows: readonly FieldRow[], place: PhonePlace): number[] {
   const reachM = reachOf(place);

@@ -17,6 +17,8 @@ export interface StopVine {
   readonly rowLabel: string;
   readonly ordinal: number;
   readonly vineNumber: number;
+  /** Longitude and latitude, where vines stand without rows. */
+  readonly place?: readonly [number, number] | undefined;
   readonly isReserve: boolean;
 }
 
@@ -31,7 +33,7 @@ export function askedAt(round: Pick<FieldRound, 'measures'>, stop: WalkStop): Fi
 export function vineAt(stop: WalkStop, entries: readonly WalkEntry[]): StopVine | null {
   const isFound = (rowId: string, ordinal: number) => entries.some((entry) => entry.kind === 'finding' && entry.rowId === rowId && entry.ordinal === ordinal);
   const isLeft = isFound(stop.rowId, stop.ordinal) || (stop.atReserve === true && stop.reserve !== null);
-  if (!isLeft) return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, isReserve: false };
+  if (!isLeft) return { rowId: stop.rowId, rowLabel: stop.rowLabel, ordinal: stop.ordinal, vineNumber: stop.vineNumber, place: stop.place, isReserve: false };
   if (stop.reserve === null || isFound(stop.reserve.rowId, stop.reserve.ordinal)) return null;
   return { ...stop.reserve, isReserve: true };
 }

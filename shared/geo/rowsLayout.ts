@@ -28,6 +28,8 @@ export interface RowXY<Piece extends PieceXY = PieceXY> {
 export interface RowsXY<Piece extends PieceXY = PieceXY> {
   readonly frame: RowFrame;
   readonly rows: readonly RowXY<Piece>[];
+  /** The lines only number the places of vines that stand without rows: people walk between them as they like. */
+  readonly withoutRows?: boolean;
 }
 
 export type RowWarning =

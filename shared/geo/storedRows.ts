@@ -26,12 +26,13 @@ export interface FrameFacts {
   readonly boundary: MultiPolygonLonLat;
   readonly rowBearingDeg: number;
   readonly epsg: number;
+  readonly withoutRows?: boolean;
 }
 
 /** Rows as every calculation takes them, from rows as they are stored. Row i of the answer is row i of the input. */
 export function rowsFromStored(facts: FrameFacts, stored: readonly StoredRow[]): BlockRows {
   const frame = blockRowFrame(facts);
-  return { epsg: facts.epsg, frame, rows: stored.map((row) => rowFromStored(row, frame, facts.epsg)), warnings: [] };
+  return { epsg: facts.epsg, frame, rows: stored.map((row) => rowFromStored(row, frame, facts.epsg)), warnings: [], ...(facts.withoutRows ? { withoutRows: true } : {}) };
 }
 
 /** The row frame of a block: origin at the outline's first vertex, bearing turned from true to grid north at its middle. */

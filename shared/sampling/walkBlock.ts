@@ -8,6 +8,7 @@ import { shortestWalk, type Walk, type WalkRequest } from './walk.ts';
 import { type AlleyOptions, alleysOfRows, type BlockAlleys, type VineToVisit, walkTargetOf } from './walkAlleys.ts';
 import type { AlleyLayout, WalkEdge, WalkNode, WalkPlace } from './walkLayout.ts';
 import { placeOfGate } from './walkPlaces.ts';
+import { sheetBetween, walkBetween } from './walkBetween.ts';
 import { type SheetInput, sheetLines, type SheetLine } from './walkSheet.ts';
 import { type PacedGround, secondsAlong, walkTime } from './walkTime.ts';
 
@@ -63,6 +64,7 @@ export function shareBlockWalk(request: BlockWalkRequest, team: { readonly peopl
 
 /** The crew sheet of a walk in a block, with the zone of each vine of the request where bags are made by zone. */
 export function sheetOfBlock({ rows, vines }: Pick<BlockWalkRequest, 'rows' | 'vines'>, { walk, layout }: BlockWalk, zoneOf?: (vine: number) => number): SheetLine[] {
+  if (rows.withoutRows) return sheetBetween(walk, vines, zoneOf);
   const known = new Map<number, ReturnType<SheetInput['vinesOfRow']>>();
   const vinesOfRow: SheetInput['vinesOfRow'] = (rowIndex) => {
     const row = rows.rows[rowIndex]!;
@@ -80,6 +82,7 @@ function inRowOrder(vines: readonly VineToVisit[]): number[] {
 
 function walkVines(request: BlockWalkRequest, { layout, assumedOpen }: BlockAlleys, chosen: readonly number[]): BlockWalk {
   const { rows, gateXY, end = 'gate', ground = {} } = request;
+  if (rows.withoutRows) return { ...walkBetween(request, chosen), layout, assumedOpen };
   const order = inRowOrder(chosen.map((vine) => request.vines[vine]!)).map((place) => chosen[place]!);
   const gate = placeOfGate(layout, rows.frame, gateXY);
   const start = request.from === undefined ? gate : placeAtVine(request, request.from);

@@ -29,6 +29,7 @@ export async function viewBlock(access: Access, blockId: string, options: { now:
     rootstock: block.rootstock,
     plantedYear: block.plantedYear,
     bookAreaHa: block.bookAreaHa,
+    withoutRows: block.withoutRows,
     rowBearingDeg: block.rowBearingDeg,
     rowSpacingM: block.rowSpacingM,
     vineSpacingM: block.vineSpacingM,

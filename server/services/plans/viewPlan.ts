@@ -2,9 +2,11 @@ import type { Point } from 'geojson';
 import type { z } from 'zod';
 import { planBasis, type PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import { planChoices } from '../../../shared/contracts/planChoices.ts';
-import type { PlanList, PlanSummary, PlanView, walkFacts, zoneDrawFacts } from '../../../shared/contracts/plans.ts';
+import type { PlanList, PlanSummary, PlanView, VineWords, walkFacts, zoneDrawFacts } from '../../../shared/contracts/plans.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import { vineLabel } from '../../../shared/geo/numbering.ts';
+import { fromUtm } from '../../../shared/geo/utm.ts';
+import { vineXY } from '../../../shared/geo/vines.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import type { Access } from '../../access/access.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -89,10 +91,12 @@ async function runsOf(estateId: string, zoningId: string, ground: BlockVines): P
 }
 
 /** A vine as people in the block name it. */
-export function vineWords(ground: BlockVines, rowId: string, ordinal: number): { rowId: string; rowLabel: string; ordinal: number; vineNumber: number } {
+export function vineWords(ground: BlockVines, rowId: string, ordinal: number): VineWords {
   const index = ground.rowIndexOf.get(rowId);
   if (index === undefined) return { rowId, rowLabel: '', ordinal, vineNumber: ordinal };
-  return { rowId, rowLabel: ground.stored[index]!.label, ordinal, vineNumber: vineLabel(ground.rows.rows[index]!, ordinal, ground.block.vineOneEnd) };
+  const row = ground.rows.rows[index]!;
+  const place = ground.block.withoutRows ? vineXY(row, ordinal) : null;
+  return { rowId, rowLabel: ground.stored[index]!.label, ordinal, vineNumber: vineLabel(row, ordinal, ground.block.vineOneEnd), ...(place === null ? {} : { place: [...fromUtm(place, ground.block.epsg)] as [number, number] }) };
 }
 
 async function summariesOf(access: Access, plans: Plan[]): Promise<PlanSummary[]> {

@@ -8,6 +8,7 @@ export interface BlockDraft {
   rootstock: string;
   plantedYear: number | null;
   bookAreaHa: number | null;
+  withoutRows: boolean;
   rowBearingDeg: number | null;
   rowSpacingM: number | null;
   vineSpacingM: number | null;
@@ -25,14 +26,14 @@ export interface BlockDraft {
 
 export function emptyDraft(): BlockDraft {
   return {
-    name: '', variety: '', rootstock: '', plantedYear: null, bookAreaHa: null, rowBearingDeg: null, rowSpacingM: 2.5, vineSpacingM: 1.2, rowCount: null, headlandM: 0,
+    name: '', variety: '', rootstock: '', plantedYear: null, bookAreaHa: null, withoutRows: false, rowBearingDeg: null, rowSpacingM: 2.5, vineSpacingM: 1.2, rowCount: null, headlandM: 0,
     rowOneSide: 'low', vineOneEnd: 'start', firstRowLabel: 1, startPostColour: 'white', endPostColour: 'red', cellSizeM: 2, trellis: '', notes: '',
   };
 }
 
 export function draftOf(block: BlockView): BlockDraft {
-  const { name, variety, rootstock, plantedYear, bookAreaHa, rowBearingDeg, rowSpacingM, vineSpacingM, rowCount, headlandM, rowOneSide, vineOneEnd, firstRowLabel, startPostColour, endPostColour, cellSizeM, trellis, notes } = block;
-  return { name, variety, rootstock, plantedYear, bookAreaHa, rowBearingDeg, rowSpacingM, vineSpacingM, rowCount, headlandM, rowOneSide, vineOneEnd, firstRowLabel, startPostColour, endPostColour, cellSizeM, trellis, notes };
+  const { name, variety, rootstock, plantedYear, bookAreaHa, withoutRows, rowBearingDeg, rowSpacingM, vineSpacingM, rowCount, headlandM, rowOneSide, vineOneEnd, firstRowLabel, startPostColour, endPostColour, cellSizeM, trellis, notes } = block;
+  return { name, variety, rootstock, plantedYear, bookAreaHa, withoutRows, rowBearingDeg, rowSpacingM, vineSpacingM, rowCount, headlandM, rowOneSide, vineOneEnd, firstRowLabel, startPostColour, endPostColour, cellSizeM, trellis, notes };
 }
 
 export type MissingFact = 'name' | 'outline' | 'rowBearingDeg' | 'rowSpacingM' | 'vineSpacingM' | 'headlandM' | 'cellSizeM' | 'firstRowLabel';

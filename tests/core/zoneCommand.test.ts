@@ -74,7 +74,7 @@ describe('the zoning command', () => {
     const middle = (west + east) / 2;
     const parts = ([[west, south, middle, north], [middle, south, east, north]] as const).map((box) => bboxClip(features[0]!, [...box]));
     writeFileSync(join(folder, 'parts.geojson'), JSON.stringify({ type: 'FeatureCollection', features: parts }));
-    const made = await zone('--block', 'parts.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--zones', '2', '--cell', '4', '--out', 'parts-zones.geojson');
+    const made = await zone('--block', 'parts.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--zones', '2', '--cell', '4', '--out', 'partsZones.geojson');
     expect(made).toMatchObject({ exitCode: 0, line: expect.stringContaining('2 zones on 2.00 ha') });
   });
 

@@ -1,9 +1,9 @@
 /** What stands beside a visit's figures because it may explain them. Limits are judgement and can be changed. */
 export interface VisitConditions {
   readonly wetFruit: boolean | null;
-  /** Rain in the two days before, mm. */
+  /** Rain on the day and the two days before, mm. */
   readonly rainMm: number | null;
-  /** Highest temperature in the two days before, °C. */
+  /** Highest temperature on the day and the two days before, °C. */
   readonly maxC: number | null;
 }
 

@@ -3,7 +3,7 @@ import { spellLabelCode } from '../../shared/field/labelCode.ts';
 import { expectAccessible } from './support/accessible.ts';
 import { startApplication, type Application } from './support/application.ts';
 import { codeOn } from './support/printed.ts';
-import { benchOf, boardOf, dayFromNow, expectForecastOf26, expectHowManyMore, newestSugar, printedBehind, reviewOf, ripeningOf } from './support/seasonSteps.ts';
+import { benchOf, boardOf, bringHeatAndRain, dayFromNow, expectForecastOf26, expectHowManyMore, newestSugar, printedBehind, reviewOf, ripeningOf } from './support/seasonSteps.ts';
 
 let app: Application;
 
@@ -64,6 +64,7 @@ describe('from results to the season’s review', () => {
     await page.getByRole('button', { name: 'Read it back' }).click();
     await page.getByText('How are the dates written?').waitFor();
     await expectAccessible(page);
+    await bringHeatAndRain(page, { url: app.url, estateId, blockId, visit: view.visits.at(-1)!.on });
     await context.close();
   });
 

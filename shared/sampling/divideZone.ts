@@ -9,18 +9,18 @@ import { pooledVariance, summarise, type VariancePart } from './variances.ts';
  * readings. One degree of freedom is taken off for having chosen the best cut, and each side's spread is pulled
  * towards the common one, so that chance does not pass for two populations.
  */
-export interface LocatedReading {
+export interface ZoneReading {
   readonly value: number;
   /** Readings of different visits are compared only inside their visit. */
   readonly visit: string;
+}
+export interface LocatedReading extends ZoneReading {
   /** Layer value at the vine. */
   readonly layer: number;
 }
 
-export interface DivideQuestion {
-  readonly readings: readonly LocatedReading[];
-  /** Layer value at every vine of the zone. */
-  readonly layerAtVines: readonly number[];
+/** What is asked of the zone, and of its parts. */
+export interface Demand {
   readonly margin: number;
   readonly confidence: number;
   /** Count of the undivided zone, as the plan has it. */
@@ -29,6 +29,12 @@ export interface DivideQuestion {
   readonly wanted?: 'parts' | 'whole';
   readonly kind?: 'sd' | 'cv';
   readonly minimum?: number;
+}
+
+export interface DivideQuestion extends Demand {
+  readonly readings: readonly LocatedReading[];
+  /** Layer value at every vine of the zone. */
+  readonly layerAtVines: readonly number[];
 }
 
 export interface Division {
@@ -61,12 +67,26 @@ export function bestDivision(question: DivideQuestion): Division | null {
 }
 
 function divideAt(cut: number, question: DivideQuestion): Division | null {
-  const { readings, layerAtVines, margin, confidence, presentCount, wanted = 'parts', kind = 'sd', minimum } = question;
-  const sides = [readings.filter(({ layer }) => layer <= cut), readings.filter(({ layer }) => layer > cut)];
+  const { readings, layerAtVines } = question;
   const below = layerAtVines.filter((layer) => layer <= cut).length;
-  const vines: [number, number] = [below, layerAtVines.length - below];
+  return judgeParts(question, { cut, sides: [readings.filter(({ layer }) => layer <= cut), readings.filter(({ layer }) => layer > cut)], vines: [below, layerAtVines.length - below] });
+}
+
+/** Readings and vines of both parts of a zone. */
+export interface ZoneParts {
+  readonly cut: number;
+  readonly sides: readonly [readonly ZoneReading[], readonly ZoneReading[]];
+  readonly vines: readonly [number, number];
+}
+
+/**
+ * What two given parts of a zone ask for, or null where a part has fewer than six readings or less than a fifth of the vines.
+ * Parts that follow rows are not quite those of the layer's line, and one vine on the wrong side can double a count.
+ */
+export function judgeParts(question: Demand, { cut, sides, vines }: ZoneParts): Division | null {
+  const { margin, confidence, presentCount, wanted = 'parts', kind = 'sd', minimum } = question;
   if (sides.some((side) => side.length < MINIMUM_READINGS)) return null;
-  if (Math.min(...vines) < MINIMUM_SHARE * layerAtVines.length) return null;
+  if (Math.min(...vines) < MINIMUM_SHARE * (vines[0] + vines[1])) return null;
   const own = sides.map((side) => withinVisits(side, kind));
   const common = pooledVariance(own);
   if (common.df <= 1) return null;
@@ -79,13 +99,13 @@ function divideAt(cut: number, question: DivideQuestion): Division | null {
   return { cut, vines, spreads, counts, total, saving, recommended: saving >= WORTH_DIVIDING };
 }
 
-function withinVisits(readings: readonly LocatedReading[], kind: 'sd' | 'cv'): VariancePart {
+function withinVisits(readings: readonly ZoneReading[], kind: 'sd' | 'cv'): VariancePart {
   const visits = new Map<string, number[]>();
   for (const { visit, value } of readings) visits.set(visit, [...(visits.get(visit) ?? []), value]);
   return pooledVariance([...visits.values()].map((values) => groupVariance(values, kind)));
 }
 
-function countParts(parts: { vines: [number, number]; spreads: [number, number]; margin: number; confidence: number; wanted: 'parts' | 'whole'; minimum?: number }): [number, number] {
+function countParts(parts: { vines: readonly [number, number]; spreads: [number, number]; margin: number; confidence: number; wanted: 'parts' | 'whole'; minimum?: number }): [number, number] {
   const { vines, spreads, margin, confidence, wanted, minimum } = parts;
   if (wanted === 'whole') {
     const zones = vines.map((count, i) => ({ vines: count, sd: spreads[i]!, minimum }));
@@ -108,7 +128,7 @@ export function mergedSpread(parts: readonly { readonly vines: number; readonly 
 }
 
 /** How far two parts differ in their means, for the sentence that explains a division. */
-export function partMeans(readings: readonly LocatedReading[], cut: number): readonly [number, number] {
-  const mean = (side: readonly LocatedReading[]) => summarise(side.map(({ value }) => value)).mean;
-  return [mean(readings.filter(({ layer }) => layer <= cut)), mean(readings.filter(({ layer }) => layer > cut))];
+export function partMeans([first, second]: ZoneParts['sides']): readonly [number, number] {
+  const mean = (side: readonly ZoneReading[]) => summarise(side.map(({ value }) => value)).mean;
+  return [mean(first), mean(second)];
 }

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { planForBudget, spent, type Budget } from '../../shared/sampling/budget.ts';
-import { bestDivision, mergedSpread, partMeans, type LocatedReading } from '../../shared/sampling/divideZone.ts';
+import { bestDivision, judgeParts, mergedSpread, partMeans, type LocatedReading } from '../../shared/sampling/divideZone.ts';
 import { blockMaths } from '../../shared/sampling/blockMaths.ts';
 import { adviseImpractical } from '../../shared/sampling/impractical.ts';
 import type { Spread } from '../../shared/sampling/margins.ts';
@@ -276,8 +276,23 @@ describe('dividing a zone', () => {
     expect(division.cut).toBeLessThan(0.45);
     expect(division.recommended).toBe(true);
     expect(division.vines[0] + division.vines[1]).toBe(400);
-    const [low, high] = partMeans(two, division.cut);
+    const [low, high] = partMeans([two.filter(({ layer }) => layer <= division.cut), two.filter(({ layer }) => layer > division.cut)]);
     expect(high - low).toBeGreaterThan(3);
+  });
+
+  it('promises the counts of parts that follow rows, not those of the line of the layer', () => {
+    const two = readings(seededRandom(4), (layer) => (layer < 0.4 ? 20 : 24));
+    const demand = { margin: 0.5, confidence: 0.95, presentCount: 66 };
+    const onLine = bestDivision({ ...demand, readings: two, layerAtVines: vines })!;
+    const sides = [two.filter(({ layer }) => layer <= onLine.cut), two.filter(({ layer }) => layer > onLine.cut)] as const;
+    expect(judgeParts(demand, { cut: onLine.cut, sides, vines: onLine.vines })).toEqual(onLine);
+    // A run along the row takes two vines of the poor part into the rich one: readings 4 apart beside a spread of 0.7.
+    const drawn = judgeParts(demand, { cut: onLine.cut, sides: [sides[0].slice(0, -2), [...sides[0].slice(-2), ...sides[1]]], vines: [onLine.vines[0] - 20, onLine.vines[1] + 20] })!;
+    expect(drawn.spreads[1]).toBeGreaterThan(1.3 * onLine.spreads[1]);
+    expect(drawn.counts[1]).toBeGreaterThan(1.5 * onLine.counts[1]);
+    expect(drawn.total).toBe(drawn.counts[0] + drawn.counts[1]);
+    expect(drawn.saving).toBeCloseTo(1 - drawn.total / 66, 12);
+    expect(judgeParts(demand, { cut: onLine.cut, sides, vines: [79, 321] })).toBeNull();
   });
 
   it('is hardly ever advised when the readings only scatter', () => {

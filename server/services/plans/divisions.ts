@@ -5,7 +5,7 @@ import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import type { ZoneDivision } from '../../../shared/contracts/plans.ts';
-import { bestDivision, partMeans, type DivideQuestion, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
+import { bestDivision, judgeParts, partMeans, type Demand, type Division, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { membersOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
@@ -58,21 +58,41 @@ function divideZone(ask: DivideAsk): ZoneDivision | null {
   if (code === undefined) return null;
   const own = readings.filter((reading) => String(reading.zone) === zone && reading.measureCode === code);
   const ofZone = [...planGround.zoneOf.keys()].filter((vine) => String(planGround.zoneOf[vine]) === zone);
-  let best: { layer: LayerOnVines; division: ZoneDivision['division']; means: readonly [number, number] } | null = null;
+  const demand = demandOf(ask, at, code);
+  let best: DrawnDivision | null = null;
   for (const layer of layers) {
     const located: LocatedReading[] = own.flatMap(({ value, visit, vine }) => (Number.isNaN(layer.atVines[vine]!) ? [] : [{ value, visit, layer: layer.atVines[vine]! }]));
     const layerAtVines = ofZone.map((vine) => layer.atVines[vine]!).filter((value) => !Number.isNaN(value));
-    const division = bestDivision({ ...demandOf(ask, at, code), readings: located, layerAtVines });
-    if (division !== null && (best === null || division.total < best.division.total)) best = { layer, means: partMeans(located, division.cut), division: { ...division, vines: [...division.vines], spreads: [...division.spreads], counts: [...division.counts] } };
+    const onLine = bestDivision({ ...demand, readings: located, layerAtVines });
+    const drawn = onLine && drawnDivision(ask, { layer, cut: onLine.cut, own, ofZone, demand });
+    if (drawn && (best === null || drawn.division.total < best.division.total)) best = drawn;
   }
   if (best === null) return null;
-  const { layer, division, means } = best;
-  const newZone = Math.max(...ask.basis.zones.map(({ number }) => number)) + 1;
-  return { zone, measureCode: code, layerId: layer.id, layerName: layer.name, division, means: [...means], newZone, rows: rowsOfPart(planGround, { zone: Number(zone), newZone, layer, cut: division.cut }) };
+  const { layer, division, means, given } = best;
+  return { zone, measureCode: code, layerId: layer.id, layerName: layer.name, division: { ...division, vines: [...division.vines], spreads: [...division.spreads], counts: [...division.counts] }, means: [...means], newZone: newZoneOf(ask), rows: runsOf(planGround, given) };
 }
 
+interface DrawnDivision {
+  layer: LayerOnVines;
+  division: Division;
+  means: readonly [number, number];
+  /** 1 at vines that the second part takes. */
+  given: Uint8Array;
+}
+
+/** A cut as it will be drawn along the rows: promised is what those parts ask for, not what the layer's own line would. */
+function drawnDivision(ask: DivideAsk, { layer, cut, own, ofZone, demand }: { layer: LayerOnVines; cut: number; own: ZonedReading[]; ofZone: number[]; demand: Demand }): DrawnDivision | null {
+  const given = vinesOfPart(ask.planGround, { zone: Number(ask.zone), newZone: newZoneOf(ask), layer, cut });
+  const sides = [own.filter(({ vine }) => given[vine] === 0), own.filter(({ vine }) => given[vine] === 1)] as const;
+  const taken = ofZone.filter((vine) => given[vine] === 1).length;
+  const division = judgeParts(demand, { cut, sides, vines: [ofZone.length - taken, taken] });
+  return division && { layer, division, means: partMeans(sides), given };
+}
+
+const newZoneOf = ({ basis }: DivideAsk) => Math.max(...basis.zones.map(({ number }) => number)) + 1;
+
 /** What the measure that drives the zone asks for, on the scale its spread is kept in. */
-function demandOf({ answer, choices, basis }: DivideAsk, at: number, code: string): Omit<DivideQuestion, 'readings' | 'layerAtVines'> {
+function demandOf({ answer, choices, basis }: DivideAsk, at: number, code: string): Demand {
   const measure = answer.question.measures.find((one) => one.code === code)!;
   const { kind } = measure.spreads[at]!;
   const mean = Math.abs(measure.expectedMeans[at] ?? Number.NaN);
@@ -98,14 +118,17 @@ function valueAt(grid: Grid, cells: Cells, xy: [number, number]): number {
   return cell < 0 ? Number.NaN : cells[cell]!;
 }
 
-/** The second part as runs of vines along the rows, none shorter than a crew would stop for. */
-function rowsOfPart({ zoning, ground, zoneOf }: PlanGround, part: { zone: number; newZone: number; layer: LayerOnVines; cut: number }): ZoneDivision['rows'] {
+/** The second part in runs along the rows, none shorter than a crew would stop for. */
+function vinesOfPart({ zoning, ground, zoneOf }: PlanGround, part: { zone: number; newZone: number; layer: LayerOnVines; cut: number }): Uint8Array {
   const grid = gridOf(ground);
   const labels = new Uint8Array(decodeLabels(zoning.labels!)) as Labels;
   labels.forEach((label, cell) => {
     if (label === part.zone && part.layer.cells[cell]! > part.cut) labels[cell] = part.newZone;
   });
   const { vineLabels } = snapToRows({ grid, labels, rows: ground.rows, vines: ground.vines }, { mode: 'partRow', shortestRunM });
-  const given = Uint8Array.from(vineLabels, (label, vine) => (label === part.newZone && zoneOf[vine] === part.zone ? 1 : 0));
+  return Uint8Array.from(vineLabels, (label, vine) => (label === part.newZone && zoneOf[vine] === part.zone ? 1 : 0));
+}
+
+function runsOf({ ground }: PlanGround, given: Uint8Array): ZoneDivision['rows'] {
   return rowRuns(ground.vines, given).filter(({ label }) => label === 1).map(({ rowIndex, fromOrdinal, toOrdinal }) => ({ rowId: ground.stored[rowIndex]!.id, from: fromOrdinal, to: toOrdinal }));
 }

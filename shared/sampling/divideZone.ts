@@ -57,13 +57,13 @@ const PRIOR_DF = 6;
 
 /** Best division along the layer, or null with fewer than six readings on each side of every possible cut. */
 export function bestDivision(question: DivideQuestion): Division | null {
+  return divisionsAlong(question)[0] ?? null;
+}
+
+/** Divisions along the layer, cheapest first, ties to the lower cut; one for each gap between readings that leaves six on each side. */
+export function divisionsAlong(question: DivideQuestion): Division[] {
   const sorted = [...new Set(question.readings.map(({ layer }) => layer))].sort((a, b) => a - b);
-  let best: Division | null = null;
-  for (let i = 1; i < sorted.length; i++) {
-    const division = divideAt((sorted[i - 1]! + sorted[i]!) / 2, question);
-    if (division !== null && (best === null || division.total < best.total)) best = division;
-  }
-  return best;
+  return sorted.slice(1).flatMap((layer, i) => divideAt((sorted[i]! + layer) / 2, question) ?? []).sort((a, b) => a.total - b.total);
 }
 
 function divideAt(cut: number, question: DivideQuestion): Division | null {

@@ -5,7 +5,7 @@ import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
 import type { ZoneDivision } from '../../../shared/contracts/plans.ts';
-import { bestDivision, judgeParts, partMeans, type Demand, type Division, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
+import { divisionsAlong, judgeParts, partMeans, type Demand, type Division, type LocatedReading } from '../../../shared/sampling/divideZone.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { membersOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
@@ -18,6 +18,8 @@ import { loadPlanGround, type PlanGround } from './planGround.ts';
 
 /** Shortest run of vines along a row that a divided zone gives away, in metres. */
 const shortestRunM = 20;
+/** Cuts of a layer, cheapest first, that are judged as they would be drawn: runs along rows may spoil the cheapest and spare its neighbour. */
+const cutsDrawn = 8;
 
 interface LayerOnVines {
   id: string;
@@ -63,9 +65,10 @@ function divideZone(ask: DivideAsk): ZoneDivision | null {
   for (const layer of layers) {
     const located: LocatedReading[] = own.flatMap(({ value, visit, vine }) => (Number.isNaN(layer.atVines[vine]!) ? [] : [{ value, visit, layer: layer.atVines[vine]! }]));
     const layerAtVines = ofZone.map((vine) => layer.atVines[vine]!).filter((value) => !Number.isNaN(value));
-    const onLine = bestDivision({ ...demand, readings: located, layerAtVines });
-    const drawn = onLine && drawnDivision(ask, { layer, cut: onLine.cut, own, ofZone, demand });
-    if (drawn && (best === null || drawn.division.total < best.division.total)) best = drawn;
+    for (const { cut } of divisionsAlong({ ...demand, readings: located, layerAtVines }).slice(0, cutsDrawn)) {
+      const drawn = drawnDivision(ask, { layer, cut, own, ofZone, demand });
+      if (drawn && (best === null || drawn.division.total < best.division.total)) best = drawn;
+    }
   }
   if (best === null) return null;
   const { layer, division, means, given } = best;

@@ -55,6 +55,15 @@ describe('a block whose vines stand without rows', () => {
     expect(new Set(plan.targets.map(({ zone }) => zone))).toEqual(new Set([1, 2]));
   });
 
+  it('leaves in files by place numbers and coordinates, and names no row that is not there', async () => {
+    const file = async (format: string) => String((await owner.get(`${base()}/plans/${plan.id}/export?format=${format}`).buffer(true)).text);
+    const [first] = plan.targets;
+    const gpx = await file('gpx');
+    expect(gpx).toContain(`<name>1 ${first!.rowLabel}-${first!.vineNumber}</name><desc>Zone ${first!.zone}; reserve ${latLonText(first!.reserve!.place!)}</desc>`);
+    expect(gpx).not.toMatch(/<name>[^<]*R\d/);
+    expect(await file('csv')).toContain(`${first!.position[0].toFixed(7)},${first!.position[1].toFixed(7)}`);
+  });
+
   it('is walked straight from vine to vine', async () => {
     const walk = (await owner.get(`${base()}/plans/${plan.id}/walk?people=2`)).body as PlanWalk;
     const xyOf = (id: string) => toUtm(plan.targets.find((target) => target.id === id)!.position, block.ground.block.epsg);

@@ -22,7 +22,7 @@ export const planFormats = {
   geojson: { type: 'application/geo+json', extension: 'geojson', write: (plan) => geoJsonOf(planFeatures(plan)) },
   shapefile: { type: 'application/zip', extension: 'zip', write: (plan) => shapefileOf(planFeatures(plan)) },
   geopackage: { type: 'application/geopackage+sqlite3', extension: 'gpkg', write: (plan) => geoPackageOf([planFeatures(plan)]) },
-  kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), ({ values: [order, , , , row, vine] }) => ({ label: `${order ?? ''} R${row} V${vine}`.trim(), colour: null })) },
+  kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), ({ values: [order, , , , row, vine] }) => ({ label: `${order ?? ''} ${plan.targets.some(({ place }) => place) ? `${row}-${vine}` : `R${row} V${vine}`}`.trim(), colour: null })) },
 } satisfies Record<string, PlanFormat>;
 
 /** The vines of a plan as a file. */

@@ -9,6 +9,7 @@ import type { PlanSummary, PlanView } from '../../shared/contracts/plans.ts';
 import { toUtm } from '../../shared/geo/utm.ts';
 import { readPdf, type PdfPage } from '../core/pdfText.ts';
 import { startApplication, type Application } from './support/application.ts';
+import { readMap } from './support/mapContents.ts';
 
 let app: Application;
 let page: Page;
@@ -158,6 +159,19 @@ describe('from a pilot to paper', () => {
     await page.keyboard.press('Tab');
     await page.getByText(/^Walk 2: \d+ vines/).waitFor();
     await page.getByText('The loads lie within 15 % of each other.').waitFor();
+    // A walk each on the map, in a stroke of its own, and a vine of the plan in its row on the strip, as it is said to those who do not see it.
+    await map.scrollIntoViewIfNeeded();
+    await expect.poll(async () => (await readMap(page, 'lines', 'route-1'))?.drawnIds, { timeout: 30_000 }).toEqual(['walk-1']);
+    expect((await readMap(page, 'lines', 'route-0'))!.held.map(({ properties }) => properties.id)).toEqual(['walk-0', 'walk-1']);
+    const drawn = await asked<PlanView>(`/plans/${/plans\/([0-9a-f-]{36})/.exec(page.url())![1]}`);
+    const strip = page.getByRole('grid', { name: /Long Furrow/ });
+    const { items: rows } = await asked<{ items: { id: string }[] }>(`/blocks/${drawn.blockId}/rows`);
+    const [target] = [...drawn.targets].sort((a, b) => a.ordinal - b.ordinal);
+    await strip.focus();
+    for (let row = 0; row < rows.findIndex(({ id }) => id === target!.rowId); row++) await page.keyboard.press('ArrowDown');
+    await page.keyboard.press('Home');
+    for (let vine = 1; vine < target!.ordinal; vine++) await page.keyboard.press('ArrowRight');
+    expect(await strip.getByRole('gridcell').textContent()).toMatch(new RegExp(`^Row ${target!.rowLabel}, vine ${target!.vineNumber}, zone ${target!.zone}\\b.*, target vine`, 'u'));
     await send();
     await page.getByRole('table').filter({ hasText: 'Nuno Alvor' }).getByText('Nuno Alvor').first().click();
     const sheet = await download('Sheet, A4');

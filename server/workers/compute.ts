@@ -9,6 +9,7 @@ type Computation = (input: never, progress: Progress) => unknown;
 const computations = {
   labFile: async () => (await import('../importers/lab/readLabFile.ts')).readLabFile,
   compareLayers: async () => (await import('./compareLayers.ts')).compareLayers,
+  divideZones: async () => (await import('../ground/divideZones.ts')).divideZones,
   drawVines: async () => (await import('../ground/drawVines.ts')).drawVines,
   describeFile: async () => (await import('../placing/describeFile.ts')).describeFile,
   outlinesOfFile: async () => (await import('../placing/outlinesOfFile.ts')).outlinesOfFile,

@@ -1,12 +1,14 @@
 import type { PlanView } from '../../shared/contracts/plans.ts';
 import { latLonText } from '../../shared/geo/latLonText.ts';
 import { xmlText } from './features/xmlText.ts';
+import { vineMark } from './vineMark.ts';
 
 /** Target vines as GPX 1.1 waypoints in walking order, named as the block counts them; without rows by their place numbers, the reserve by its coordinates. */
 export function planGpx(plan: PlanView): string {
-  const points = plan.targets.map(({ position: [lon, lat], rowLabel, vineNumber, place, zone, walkOrder, reserve }) => {
-    const name = `${walkOrder ?? ''} ${place ? `${rowLabel}-${vineNumber}` : `R${rowLabel} V${vineNumber}`}`.trim();
-    const note = `Zone ${zone}${reserve ? `; reserve ${reserve.place ? latLonText(reserve.place) : `R${reserve.rowLabel} V${reserve.vineNumber}`}` : ''}`;
+  const points = plan.targets.map((target) => {
+    const { position: [lon, lat], zone, walkOrder, reserve } = target;
+    const name = `${walkOrder ?? ''} ${vineMark(target)}`.trim();
+    const note = `Zone ${zone}${reserve ? `; reserve ${reserve.place ? latLonText(reserve.place) : vineMark(reserve)}` : ''}`;
     return `  <wpt lat="${lat.toFixed(7)}" lon="${lon.toFixed(7)}"><name>${xmlText(name)}</name><desc>${xmlText(note)}</desc><type>target vine</type></wpt>`;
   });
   return [

@@ -61,6 +61,7 @@ describe('a block whose vines stand without rows', () => {
     const gpx = await file('gpx');
     expect(gpx).toContain(`<name>1 ${first!.rowLabel}-${first!.vineNumber}</name><desc>Zone ${first!.zone}; reserve ${latLonText(first!.reserve!.place!)}</desc>`);
     expect(gpx).not.toMatch(/<name>[^<]*R\d/);
+    expect(await file('kml')).toContain(`<name>1 ${first!.rowLabel}-${first!.vineNumber}</name>`);
     expect(await file('csv')).toContain(`${first!.position[0].toFixed(7)},${first!.position[1].toFixed(7)}`);
   });
 

@@ -11,8 +11,8 @@ export interface KmlLook {
 }
 
 /** A layer as KML 2.2 (OGC 07-147r2), one placemark a feature with its fields as data. */
-export function kmlOf(layer: FeatureLayer, lookOf: (feature: ExportedFeature) => KmlLook): Buffer {
-  const placemarks = layer.features.map((feature) => placemark(layer, feature, lookOf(feature)));
+export function kmlOf(layer: FeatureLayer, lookOf: (feature: ExportedFeature, at: number) => KmlLook): Buffer {
+  const placemarks = layer.features.map((feature, at) => placemark(layer, feature, lookOf(feature, at)));
   return Buffer.from(['<?xml version="1.0" encoding="UTF-8"?>', '<kml xmlns="http://www.opengis.net/kml/2.2">', `<Document><name>${xmlText(layer.title)}</name>`, ...placemarks, '</Document>', '</kml>', ''].join('\n'), 'utf8');
 }
 

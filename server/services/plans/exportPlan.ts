@@ -7,6 +7,7 @@ import { shapefileOf } from '../../exporters/features/shapefile.ts';
 import { planFeatures } from '../../exporters/planFeatures.ts';
 import { planGpx } from '../../exporters/planGpx.ts';
 import { planTable } from '../../exporters/planTable.ts';
+import { vineMark } from '../../exporters/vineMark.ts';
 import { viewPlan } from './viewPlan.ts';
 
 interface PlanFormat {
@@ -22,7 +23,7 @@ export const planFormats = {
   geojson: { type: 'application/geo+json', extension: 'geojson', write: (plan) => geoJsonOf(planFeatures(plan)) },
   shapefile: { type: 'application/zip', extension: 'zip', write: (plan) => shapefileOf(planFeatures(plan)) },
   geopackage: { type: 'application/geopackage+sqlite3', extension: 'gpkg', write: (plan) => geoPackageOf([planFeatures(plan)]) },
-  kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), ({ values: [order, , , , row, vine] }) => ({ label: `${order ?? ''} ${plan.targets.some(({ place }) => place) ? `${row}-${vine}` : `R${row} V${vine}`}`.trim(), colour: null })) },
+  kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), (_, at) => ({ label: `${plan.targets[at]!.walkOrder ?? ''} ${vineMark(plan.targets[at]!)}`.trim(), colour: null })) },
 } satisfies Record<string, PlanFormat>;
 
 /** The vines of a plan as a file. */

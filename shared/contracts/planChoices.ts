@@ -125,7 +125,8 @@ export const basisQuestion = z.object({
 }).pipe(z.object({ spread: spreadChoices, draw: drawChoices }));
 export type BasisChoices = Pick<PlanChoices, 'spread' | 'draw'>;
 
-const seed = z.number().int().min(0).max(2_147_483_647);
+export const MOST_SEED = 2_147_483_647;
+const seed = z.number().int().min(0).max(MOST_SEED);
 export const newPlan = planChoices.extend({ name: shortName, seed: seed.optional() });
 export type NewPlan = z.infer<typeof newPlan>;
 /** The seed is not here: drawing again needs a reason (`planRedraw`), so that nobody rolls until the vines look nice. */

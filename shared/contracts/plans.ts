@@ -82,6 +82,8 @@ export const planSummary = z.object({
   isPilot: z.boolean(),
   zoningId: id,
   zoningNumber: z.number().int(),
+  /** The zones in force instead, where those of the plan have been replaced. */
+  replacedBy: z.object({ id, number: z.number().int() }).nullable(),
   blockId: id,
   blockName: z.string(),
   vines: z.number().int(),

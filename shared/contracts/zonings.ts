@@ -146,7 +146,7 @@ export const publishEffects = z.object({
   vinesMoved: z.number().int(),
   renumbered: z.array(z.object({ from: zoneNumber, to: zoneNumber })),
   openRounds: z.array(z.object({ id, onDate: z.string(), people: z.array(z.string()) })),
-  plans: z.number().int(),
+  plans: z.array(z.object({ id, name: z.string(), isDraft: z.boolean(), vines: z.number().int(), vinesMoved: z.number().int() })),
   lots: z.array(z.object({ id, name: z.string(), vinesMoved: z.number().int() })),
   underFloor: z.array(z.object({ zone: zoneNumber, sampled: z.number().int(), floor: z.number().int() })),
 });

@@ -5,9 +5,11 @@ import { join } from 'node:path';
 import type { FeatureCollection, MultiPoint, Point } from 'geojson';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
-import type { PlanView } from '../../shared/contracts/plans.ts';
+import type { PlanList, PlanView } from '../../shared/contracts/plans.ts';
 import { planChoices } from '../../shared/contracts/planChoices.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
+import type { PublishEffects } from '../../shared/contracts/zonings.ts';
+import { decodeLabels, encodeCells } from '../../shared/analysis/cellBytes.ts';
 import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
@@ -20,6 +22,7 @@ import { Quota } from '../../server/models/Quota.ts';
 import { Reading } from '../../server/models/Reading.ts';
 import { Season } from '../../server/models/Season.ts';
 import { Vine } from '../../server/models/Vine.ts';
+import { Zoning } from '../../server/models/Zoning.ts';
 import { hasTool, readWithGdal } from './support/gdal.ts';
 import { makeStripBlock, type StripBlock } from './support/makeStripBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
@@ -272,6 +275,35 @@ describe('a plan', () => {
       });
     }
     rmSync(folder, { recursive: true, force: true });
+  });
+});
+
+describe('a plan on zones that are published anew', () => {
+  it('is named before they are, with its vines that leave their zone, and says afterwards what is in force', async () => {
+    const anew = await makeStripBlock(estate, { name: 'Anew', x: 800 });
+    const { id: _id, createdAt: _at, ...same } = await Zoning.query().findById(anew.zoningId).throwIfNotFound();
+    const other = Buffer.from(encodeCells(decodeLabels(same.labels!).map((zone) => Math.max(zone - 1, Math.min(zone, 1)))));
+    const version = async (number: number, labels: Buffer) => (await Zoning.query().insert({ ...same, number, labels, state: 'draft' } as never)).id;
+    const effects = async (zoningId: string) => (await manager.get(`${base()}/zonings/${zoningId}/effects`)).body as PublishEffects;
+    const publish = async (zoningId: string) => expect((await manager.post(`${base()}/zonings/${zoningId}/publish`, { revision: same.revision })).status).toBe(200);
+    const made = (await manager.post(`${base()}/zonings/${anew.zoningId}/plans`, { name: 'Counts', measures: [clusters], seed: 7 })).body as PlanView;
+    const seen = async () => ((await manager.get(`${base()}/plans/${made.id}`)).body as PlanView).replacedBy;
+    expect(made.replacedBy).toBeNull();
+
+    // Of three strips of 26 vines the first two become one zone, which one of the two has to leave its own for.
+    const second = await version(2, other);
+    expect((await effects(second)).plans).toEqual([{ id: made.id, name: 'Counts', isDraft: true, vines: 78, vinesMoved: 26 }]);
+    await publish(second);
+    expect(await seen()).toEqual({ id: second, number: 2 });
+    expect(((await manager.get(`${base()}/plans`)).body as PlanList).items[0]!.replacedBy).toEqual({ id: second, number: 2 });
+
+    // The first version taken up again as it was: the plan fits, and stands on what is in force.
+    await manager.post(`${base()}/plans/${made.id}/lock`);
+    const third = await version(3, same.labels!);
+    expect((await effects(third)).plans).toEqual([]);
+    await publish(third);
+    expect(await seen()).toBeNull();
+    expect((await effects(await version(4, other))).plans).toMatchObject([{ id: made.id, isDraft: false, vinesMoved: 26 }]);
   });
 });
 

@@ -101,9 +101,10 @@ export function vineWords(ground: BlockVines, rowId: string, ordinal: number): V
 
 async function summariesOf(access: Access, plans: Plan[]): Promise<PlanSummary[]> {
   const { estateId } = access;
-  const [blocks, zonings, rounds, targets] = await Promise.all([
+  const [blocks, zonings, replaced, rounds, targets] = await Promise.all([
     Block.query().where({ estateId }).findByIds([...new Set(plans.map(({ blockId }) => blockId))]).select('id', 'name'),
     Zoning.query().where({ estateId }).findByIds([...new Set(plans.map(({ zoningId }) => zoningId))]).select('id', 'number'),
+    replacedZones(estateId, plans),
     countBy(Round.query().where({ estateId }).whereIn('planId', plans.map(({ id }) => id)).groupBy('planId').select('planId').count('id as count')),
     countBy(Target.query().where({ estateId }).whereIn('planId', plans.map(({ id }) => id)).groupBy('planId').select('planId').count('id as count')),
   ]);
@@ -114,6 +115,7 @@ async function summariesOf(access: Access, plans: Plan[]): Promise<PlanSummary[]
     isPilot: plan.isPilot,
     zoningId: plan.zoningId,
     zoningNumber: zonings.find(({ id }) => id === plan.zoningId)?.number ?? 0,
+    replacedBy: replaced.get(plan.zoningId) ?? null,
     blockId: plan.blockId,
     blockName: blocks.find(({ id }) => id === plan.blockId)?.name ?? '',
     vines: targets.get(plan.id) ?? 0,
@@ -123,6 +125,17 @@ async function summariesOf(access: Access, plans: Plan[]): Promise<PlanSummary[]
     createdAt: plan.createdAt.toISOString(),
     lockedAt: plan.lockedAt?.toISOString() ?? null,
   }));
+}
+
+/** Versions of these plans that others with other zones have replaced, and the ones in force; a version taken up again as it was replaces nothing. */
+async function replacedZones(estateId: string, plans: Plan[]): Promise<Map<string, NonNullable<PlanSummary['replacedBy']>>> {
+  const rows = (await Zoning.query()
+    .alias('old')
+    .where({ 'old.estateId': estateId })
+    .whereIn('old.id', [...new Set(plans.map(({ zoningId }) => zoningId))])
+    .joinRaw("join zonings live on live.estate_id = old.estate_id and live.block_id = old.block_id and live.season_id = old.season_id and live.state = 'live' and live.labels is distinct from old.labels")
+    .select('old.id as oldId', 'live.id as id', 'live.number as number')) as unknown as { oldId: string; id: string; number: number }[];
+  return new Map(rows.map(({ oldId, id, number }) => [oldId, { id, number }]));
 }
 
 /** Hours as walked and worked where the walk is known, else as planned. */

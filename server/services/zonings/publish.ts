@@ -15,16 +15,16 @@ import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun } from '../../models/LotRowRun.ts';
 import { Person } from '../../models/Person.ts';
-import { Plan } from '../../models/Plan.ts';
 import { Round } from '../../models/Round.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { lockZoning, requireSameOutline } from './editZones.ts';
+import { plansTouched } from './plansTouched.ts';
 import { readLabels } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
 /**
- * What publishing would touch: readings by their vines, rounds on their way, lots, and zones with too few sampled vines. A zone that
+ * What publishing would touch: readings by their vines, rounds on their way, plans, lots, and zones with too few sampled vines. A zone that
  * only gets another number is named as such; its vines do not count as moved, as in a comparison of two versions.
  */
 export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
@@ -40,7 +40,7 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
     vinesMoved: live ? [...after.keys()].filter(isMoved).length : 0,
     renumbered: live ? pairZones(before, after).filter(({ from, to }) => from !== to).map(({ from, to }) => ({ from, to })).sort((a, b) => a.from - b.from) : [],
     openRounds: await peopleOf(access, rounds),
-    plans: live ? await Plan.query().where({ estateId: access.estateId, zoningId: live.id }).whereNot({ state: 'closed' }).resultSize() : 0,
+    plans: live ? await plansTouched(access, { live, ground, isMoved }) : [],
     lots: live ? await lotsTouched(access, { zoning, ground, isMoved }) : [],
     underFloor: await underFloor(access, { after, sampled: inBlock.map((reading) => reading.vine) }),
   };

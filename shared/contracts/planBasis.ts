@@ -51,7 +51,13 @@ export const basisZone = z.object({ id, number: z.number().int(), name: z.string
 export type BasisZone = z.infer<typeof basisZone>;
 
 /** What a walk past so many vines takes at the usual pace, on level ground and on the block's slopes. */
-export const walkExpected = z.object({ vines: z.number(), levelS: z.number(), slopedS: z.number() });
+export const walkExpected = z.object({
+  vines: z.number(),
+  levelS: z.number(),
+  slopedS: z.number(),
+  /** Metres of it below 5, from 5 to 15, to 30 and over 30 percent; not known in plans made before it was looked into. */
+  slopesM: z.array(z.number()).optional(),
+});
 export type WalkExpected = z.infer<typeof walkExpected>;
 
 /** What a plan is computed from: the browser computes the same answer from it as the server stores. */

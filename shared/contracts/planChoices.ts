@@ -62,12 +62,16 @@ export const drawChoices = z.object({
 });
 export type DrawChoices = z.infer<typeof drawChoices>;
 
+const slopeSpeed = z.number().min(0.05).max(1);
+
 /** How fast people walk between vines. */
 export const paceChoices = z.object({
-  /** On level ground; slower on slopes in the proportions of `USUAL_PACE`. */
+  /** On level ground; slower on slopes. */
   kmPerHour: z.number().min(0.5).max(10).default(3.01),
   /** Whether slopes of the elevation layer slow the walk. */
   onSlopes: z.boolean().default(true),
+  /** What slopes of 5 to 15, 15 to 30 and over 30 percent leave of that speed; in the proportions of `USUAL_PACE` when left out. */
+  slopeSpeeds: z.tuple([slopeSpeed, slopeSpeed, slopeSpeed]).optional(),
 });
 export type PaceChoices = z.infer<typeof paceChoices>;
 

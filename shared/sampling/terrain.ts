@@ -9,10 +9,11 @@ export interface Terrain {
   readonly cells: Float32Array;
 }
 
-/** Ground to walk on at the chosen speed: slower on slopes in the proportions of `USUAL_PACE`, where elevation is known and slopes count. */
-export function pacedGround({ kmPerHour, onSlopes }: PaceChoices, terrain: Terrain | null): PacedGround {
-  const times = kmPerHour / 3.6 / USUAL_PACE[0]!.speedMS;
-  const pace = USUAL_PACE.map(({ belowPercent, speedMS }) => ({ belowPercent, speedMS: speedMS * times }));
+/** Ground to walk on at the chosen speed: slower on slopes in the proportions chosen, else of `USUAL_PACE`, where elevation is known and slopes count. */
+export function pacedGround({ kmPerHour, onSlopes, slopeSpeeds }: PaceChoices, terrain: Terrain | null): PacedGround {
+  const levelMS = kmPerHour / 3.6;
+  const times = levelMS / USUAL_PACE[0]!.speedMS;
+  const pace = USUAL_PACE.map(({ belowPercent, speedMS }, i) => ({ belowPercent, speedMS: slopeSpeeds && i > 0 ? levelMS * slopeSpeeds[i - 1]! : speedMS * times }));
   return { pace, ...(onSlopes && terrain ? { elevationM: (xy: XY) => elevationAt(terrain, xy) } : {}) };
 }
 

@@ -5,7 +5,7 @@ import type { XY } from '../geo/coordinates.ts';
 import type { RowsXY } from '../geo/rowsLayout.ts';
 import type { VineTable } from '../geo/vines.ts';
 import { walkBlock } from './walkBlock.ts';
-import { USUAL_PACE, type PacedGround } from './walkTime.ts';
+import { metresBySlope, USUAL_PACE, USUAL_SLOPE_SPEEDS, type PacedGround } from './walkTime.ts';
 
 /**
  * What the walk will take before its vines are drawn: exact walks past trial vines of this block, for a few counts, and
@@ -32,9 +32,25 @@ export function trialWalks({ rows, table, vines, gateXY, elevationM }: TrialGrou
     // One vine by lot from each of equal stretches of the list: as spread as a draw, at no cost.
     const trial = Array.from({ length: count }, (_, i) => vines[Math.floor(((i + random()) * vines.length) / count)]!);
     const targets = trial.map((vine) => ({ rowIndex: table.row[vine]!, ordinal: table.ordinal[vine]! }));
-    const { walk } = walkBlock({ rows, vines: targets, gateXY, ground: { ...(elevationM ? { elevationM } : {}) } });
-    return { vines: count, levelS: walk.lengthM / USUAL_PACE[0]!.speedMS, slopedS: walk.cost };
+    const { walk, pathXY } = walkBlock({ rows, vines: targets, gateXY, ground: { ...(elevationM ? { elevationM } : {}) } });
+    return { vines: count, levelS: walk.lengthM / USUAL_PACE[0]!.speedMS, slopedS: walk.cost, slopesM: slopesOf(pathXY, elevationM) };
   });
+}
+
+function slopesOf(pathXY: readonly XY[], elevationM: PacedGround['elevationM']): number[] {
+  const metres = USUAL_PACE.map(() => 0);
+  pathXY.slice(1).forEach((toXY, i) => {
+    const fromXY = pathXY[i]!;
+    metresBySlope({ fromXY, toXY, lengthM: Math.hypot(toXY[0] - fromXY[0], toXY[1] - fromXY[1]) }, elevationM).forEach((part, slope) => (metres[slope]! += part));
+  });
+  return metres;
+}
+
+/** Share of the way in each class of slopes, of the longest walk tried; null where that is not known. */
+export function shareBySlope(walks: readonly WalkExpected[]): number[] | null {
+  const metres = walks.at(-1)?.slopesM;
+  const sum = metres?.reduce((total, part) => total + part, 0) ?? 0;
+  return metres && sum > 0 ? metres.map((part) => part / sum) : null;
 }
 
 /** Seconds on foot past so many vines at the chosen pace; 0 where there is nothing to go by. */
@@ -48,11 +64,17 @@ export function walksAsLaid(walks: readonly WalkExpected[], laid: { readonly vin
   const expected = walkSeconds(walks, laid.vines, pace);
   if (!(expected > 0)) return [...walks];
   const factor = laid.walkingS / expected;
-  return walks.map(({ vines, levelS, slopedS }) => ({ vines, levelS: levelS * factor, slopedS: slopedS * factor }));
+  return walks.map((walk) => ({ ...walk, levelS: walk.levelS * factor, slopedS: walk.slopedS * factor }));
 }
 
-function atPace({ levelS, slopedS }: WalkExpected, { kmPerHour, onSlopes }: PaceChoices): number {
-  return ((onSlopes ? slopedS : levelS) * USUAL_PACE[0]!.speedMS) / (kmPerHour / 3.6);
+/** The way stays the one that was tried, also where other speeds on slopes would make another a little quicker. */
+function atPace({ levelS, slopedS, slopesM }: WalkExpected, { kmPerHour, onSlopes, slopeSpeeds }: PaceChoices): number {
+  const onFoot = onSlopes ? slopedS * (slopeSpeeds && slopesM ? timeAt(slopesM, slopeSpeeds) / timeAt(slopesM, USUAL_SLOPE_SPEEDS) : 1) : levelS;
+  return (onFoot * USUAL_PACE[0]!.speedMS) / (kmPerHour / 3.6);
+}
+
+function timeAt(slopesM: readonly number[], speeds: readonly number[]): number {
+  return slopesM.reduce((sum, metres, i) => sum + metres / (i === 0 ? 1 : speeds[i - 1]!), 0);
 }
 
 function secondsBetween(points: readonly { readonly vines: number; readonly seconds: number }[], vines: number): number {

@@ -26,6 +26,9 @@ export function twoWaySpeed(slopePercent: number): number {
   return (0.6 * 2) / (1 / oneWay(slope) + 1 / oneWay(-slope));
 }
 
+/** What each class above the first leaves of the speed on level ground. */
+export const USUAL_SLOPE_SPEEDS: readonly number[] = USUAL_PACE.slice(1).map(({ speedMS }) => speedMS / USUAL_PACE[0]!.speedMS);
+
 export function speedOnSlope(slopePercent: number, pace: readonly SlopeClass[] = USUAL_PACE): number {
   const found = pace.find(({ belowPercent }) => Math.abs(slopePercent) < belowPercent) ?? pace.at(-1);
   if (found === undefined) throw new Error('a pace has at least one slope class');
@@ -41,9 +44,31 @@ export interface PacedGround {
 /** Elevation is read this often along a way, so that a dip between two vines counts, and never over less, so that its noise does not. */
 const READ_EVERY_M = 10;
 
+/** A straight way between two points of the map. */
+export interface StraightWay {
+  readonly fromXY: XY;
+  readonly toXY: XY;
+  readonly lengthM: number;
+}
+
 /** Seconds along a straight way of `lengthM`, the same in both directions. */
-export function secondsAlong(way: { readonly fromXY: XY; readonly toXY: XY; readonly lengthM: number }, { elevationM, pace }: PacedGround): number {
+export function secondsAlong(way: StraightWay, { elevationM, pace }: PacedGround): number {
   if (elevationM === undefined || way.lengthM === 0) return way.lengthM / speedOnSlope(0, pace);
+  const { partM, slopes } = slopesAlong(way, elevationM);
+  return slopes.reduce((seconds, slope) => seconds + partM / speedOnSlope(slope, pace), 0);
+}
+
+/** Metres of a straight way in each class of `USUAL_PACE`. */
+export function metresBySlope(way: StraightWay, elevationM: PacedGround['elevationM']): number[] {
+  const metres = USUAL_PACE.map(() => 0);
+  if (way.lengthM === 0) return metres;
+  const { partM, slopes } = elevationM === undefined ? { partM: way.lengthM, slopes: [0] } : slopesAlong(way, elevationM);
+  for (const slope of slopes) metres[USUAL_PACE.findIndex(({ belowPercent }) => Math.abs(slope) < belowPercent)]! += partM;
+  return metres;
+}
+
+/** Slopes in percent of equal parts of a way; 0 where elevation is unknown. */
+function slopesAlong(way: StraightWay, elevationM: (xy: XY) => number): { partM: number; slopes: number[] } {
   const parts = Math.max(1, Math.ceil(way.lengthM / READ_EVERY_M));
   const partM = way.lengthM / parts;
   const heightAt = (alongM: number): number => elevationM([
@@ -52,14 +77,13 @@ export function secondsAlong(way: { readonly fromXY: XY; readonly toXY: XY; read
   ]);
   const slopeBetween = (fromM: number, toM: number): number => (100 * (heightAt(toM) - heightAt(fromM))) / (toM - fromM);
   const beyondM = (READ_EVERY_M - partM) / 2;
-  let seconds = 0;
-  for (let i = 0; i < parts; i++) {
+  const slopes = Array.from({ length: parts }, (_, i) => {
     const [fromM, toM] = [i * partM, (i + 1) * partM];
     const wide = beyondM > 0 ? slopeBetween(fromM - beyondM, toM + beyondM) : Number.NaN;
     const slopePercent = Number.isNaN(wide) ? slopeBetween(fromM, toM) : wide;
-    seconds += partM / speedOnSlope(Number.isNaN(slopePercent) ? 0 : slopePercent, pace);
-  }
-  return seconds;
+    return Number.isNaN(slopePercent) ? 0 : slopePercent;
+  });
+  return { partM, slopes };
 }
 
 export interface WalkTime {

@@ -245,6 +245,14 @@ describe('the time of a walk', () => {
     const ignored = await walkOf({ pace: { onSlopes: false } });
     expect(ignored.plan.walk!.walkingS).toBeCloseTo(level.plan.walk!.walkingS, 6);
     expect(ignored.walk.slopesFrom).toBeNull();
+    // Half of what the usual figure leaves at 20 % costs more, and the walk that is shared out says the same time.
+    const own = await walkOf({ pace: { slopeSpeeds: [0.8, 0.448 / 0.836 / 2, 0.1] } });
+    expect(own.plan.walk!.walkingS).toBeGreaterThan(1.4 * steep.plan.walk!.walkingS);
+    expect(own.walk.people[0]!.walkingS).toBeCloseTo(own.plan.walk!.walkingS, 6);
+    expect(own.plan.hours * 3600).toBeCloseTo(own.plan.walk!.walkingS + own.plan.walk!.serviceS, 6);
+    const refused = await manager.post(`${base}/zonings/${place.zoningId}/plans`, { name: 'Walk', measures: [clusters], pace: { slopeSpeeds: [0.8, 0, 0.1] } });
+    expect(refused.status).toBe(422);
+    expect(JSON.stringify(refused.body)).toContain('slopeSpeeds');
   });
 });
 

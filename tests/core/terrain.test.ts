@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { elevationAt, pacedGround, type Terrain } from '../../shared/sampling/terrain.ts';
-import { secondsAlong } from '../../shared/sampling/walkTime.ts';
+import { metresBySlope, secondsAlong } from '../../shared/sampling/walkTime.ts';
 
 /** A plane that rises `percent` to the east, on 40 × 20 cells of 2 m. */
 function slope(percent: number): Terrain {
@@ -33,6 +33,26 @@ describe('walking at a chosen speed', () => {
     expect(secondsAlong(way(110, 150), pacedGround(level, slope(10)))).toBeCloseTo(40 / (0.694 / 0.836), 6);
     expect(secondsAlong(way(110, 150), pacedGround({ kmPerHour: 1.8, onSlopes: true }, slope(10)))).toBeCloseTo(80 / (0.694 / 0.836), 6);
     expect(secondsAlong(way(110, 150), pacedGround({ kmPerHour: 3.6, onSlopes: false }, slope(10)))).toBeCloseTo(40, 9);
+  });
+
+  it('takes other proportions where somebody timed their own', () => {
+    const own = { ...level, slopeSpeeds: [0.9, 0.6, 0.4] as [number, number, number] };
+    // 40 m at 1 m/s, of which 0.9 is left at 10 %, 0.6 at 20 % and 0.4 at 35 %.
+    const at = (percent: number) => secondsAlong(way(110, 150), pacedGround(own, slope(percent)));
+    expect(at(0)).toBeCloseTo(40, 9);
+    expect(at(10)).toBeCloseTo(40 / 0.9, 6);
+    expect(at(20)).toBeCloseTo(40 / 0.6, 6);
+    expect(at(35)).toBeCloseTo(100, 6);
+  });
+
+  it('counts the metres of a way by how steep they are', () => {
+    // Level for 20 m, then 20 %: read every 10 m.
+    const bent = slope(0);
+    for (let cell = 0; cell < 800; cell++) bent.cells[cell] = 50 + Math.max(0, ((cell % 40) + 0.5) * 2 - 40) * 0.2;
+    const ground = pacedGround(level, bent);
+    const metres = metresBySlope(way(120, 160), ground.elevationM);
+    expect(metres.map((part) => Math.round(part * 1e6) / 1e6)).toEqual([20, 0, 20, 0]);
+    expect(metresBySlope(way(120, 160), undefined)).toEqual([40, 0, 0, 0]);
   });
 
   it('does not take the noise of one cell under a step between two rows for a slope', () => {

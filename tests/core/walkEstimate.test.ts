@@ -7,7 +7,8 @@ import { layRows } from '../../shared/geo/rowsLayout.ts';
 import { vineTable } from '../../shared/geo/vines.ts';
 import { drawTargets } from '../../shared/sampling/targets.ts';
 import { walkBlock } from '../../shared/sampling/walkBlock.ts';
-import { trialWalks, walksAsLaid, walkSeconds } from '../../shared/sampling/walkEstimate.ts';
+import { shareBySlope, trialWalks, walksAsLaid, walkSeconds } from '../../shared/sampling/walkEstimate.ts';
+import { USUAL_PACE } from '../../shared/sampling/walkTime.ts';
 
 const pace = (facts: PlanChoicesInput['pace'] = {}) => planChoices.parse({ measures: [{ code: 'brix' }], pace: facts }).pace;
 const level = (vines: number, seconds: number): WalkExpected => ({ vines, levelS: seconds, slopedS: 2 * seconds });
@@ -30,6 +31,35 @@ describe('the walk before its vines are drawn', () => {
     const at = (facts: PlanChoicesInput['pace']) => walkSeconds(walks, 10, pace(facts));
     expect(at({ kmPerHour: 1.5 }) / at({ kmPerHour: 3 })).toBeCloseTo(2, 12);
     expect(at({ onSlopes: true }) / at({ onSlopes: false })).toBeCloseTo(2, 12);
+  });
+
+  it('weighs each class of slopes by its metres, and leaves walks alone whose metres nobody knows', () => {
+    // 300 m level and 100 m at 10 %: at 0.836 and 0.694 m/s 503 s; with half the speed on the slope 300/0.836 + 100/0.418.
+    const slopedS = 300 / 0.836 + 100 / 0.694;
+    const walks: WalkExpected[] = [{ vines: 10, levelS: 400 / 0.836, slopedS, slopesM: [300, 100, 0, 0] }];
+    const at = (facts: PlanChoicesInput['pace'], of = walks) => walkSeconds(of, 10, pace({ kmPerHour: 3.0096, ...facts }));
+    expect(at({})).toBeCloseTo(slopedS, 9);
+    expect(at({ slopeSpeeds: [0.5, 0.4, 0.3] })).toBeCloseTo(300 / 0.836 + 100 / 0.418, 6);
+    expect(at({ slopeSpeeds: [1, 1, 1] })).toBeCloseTo(400 / 0.836, 6);
+    expect(at({ slopeSpeeds: [0.5, 0.4, 0.3], onSlopes: false })).toBeCloseTo(400 / 0.836, 9);
+    expect(at({ slopeSpeeds: [0.5, 0.4, 0.3] }, [level(10, 400)])).toBe(at({}, [level(10, 400)]));
+    expect(shareBySlope(walks)).toEqual([0.75, 0.25, 0, 0]);
+    expect(shareBySlope([level(10, 400)])).toBeNull();
+  });
+
+  it('knows what the walk past every vine takes at other speeds on slopes', () => {
+    const rows = layRows([[[[0, 0], [40, 0], [40, 20], [0, 20], [0, 0]]]], { originXY: [0, 0], gridBearingDeg: lineBearing(0) }, { rowSpacingM: 2.5, vineSpacingM: 2, headlandM: 2 });
+    const table = vineTable(rows);
+    const vines = [...new Uint8Array(table.count).keys()];
+    // Steeper and steeper to the east: every class is on the way.
+    const elevationM = ([x]: XY) => (x * x) / 160;
+    const own = pace({ kmPerHour: 3.0096, slopeSpeeds: [0.95, 0.7, 0.35] });
+    const walks = trialWalks({ rows, table, vines, gateXY: [0, 0], elevationM });
+    for (const share of shareBySlope(walks)!) expect(share).toBeGreaterThan(0.05);
+    const all = vines.map((vine) => ({ rowIndex: table.row[vine]!, ordinal: table.ordinal[vine]! }));
+    const { walk } = walkBlock({ rows, vines: all, gateXY: [0, 0], ground: { elevationM, pace: [0.836, 0.836 * 0.95, 0.836 * 0.7, 0.836 * 0.35].map((speedMS, i) => ({ ...USUAL_PACE[i]!, speedMS })) } });
+    expect(walkSeconds(walks, vines.length, own) / walk.cost).toBeCloseTo(1, 2);
+    expect(walkSeconds(walks, vines.length, pace({ kmPerHour: 3.0096 })) / walk.cost).toBeGreaterThan(1.1);
   });
 
   it('never falls as the count grows, and gives a laid walk its own time at its own count', () => {

@@ -13,6 +13,10 @@ export const estateSettings = z.object({
   currency: z.string().max(8).default('EUR'),
   /** Least vines sampled in a zone. */
   floorVines: z.number().int().min(2).max(50).default(5),
+  /** What plans begin with; each can change it. Speed on level ground between vines: Tobler 1993 off a path (see walkTime.ts). */
+  walkingKmPerHour: z.number().min(0.5).max(10).default(3.01),
+  /** Finding a vine and setting up there; planning judgement. */
+  setUpSeconds: z.number().min(0).max(3600).default(15),
   /** Crew see results only where the manager switches it on. */
   crewSeeResults: z.boolean().default(false),
   emergencyNumber: z.string().max(40).default('112'),

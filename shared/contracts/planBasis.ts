@@ -76,6 +76,6 @@ export const planBasis = z.object({
   walks: z.array(walkExpected).default([]),
   /** Whether `walks` are those of vines that were drawn: then their time is no estimate. */
   isWalkLaid: z.boolean().default(false),
-  settings: z.object({ floorVines: z.number(), impracticalSamples: z.number(), dayHours: z.number(), costPerHour: z.number(), currency: z.string() }),
+  settings: z.object({ floorVines: z.number(), impracticalSamples: z.number(), dayHours: z.number(), costPerHour: z.number(), currency: z.string(), walkingKmPerHour: z.number().optional(), setUpSeconds: z.number().optional() }),
 });
 export type PlanBasis = z.infer<typeof planBasis>;

@@ -131,7 +131,13 @@ export type BasisChoices = Pick<PlanChoices, 'spread' | 'draw'>;
 
 export const MOST_SEED = 2_147_483_647;
 const seed = z.number().int().min(0).max(MOST_SEED);
-export const newPlan = planChoices.extend({ name: shortName, seed: seed.optional() });
+/** Time at a vine and walking speed are the estate's own when left out. */
+export const newPlan = planChoices.extend({
+  name: shortName,
+  seed: seed.optional(),
+  secondsPerVine: planChoices.shape.secondsPerVine.unwrap().optional(),
+  pace: paceChoices.extend({ kmPerHour: paceChoices.shape.kmPerHour.unwrap().optional() }).prefault({}),
+});
 export type NewPlan = z.infer<typeof newPlan>;
 /** The seed is not here: drawing again needs a reason (`planRedraw`), so that nobody rolls until the vines look nice. */
 export const planChange = z.object({ name: shortName.optional(), choices: planChoices.optional() });

@@ -13,6 +13,7 @@ import { decodeLabels, encodeCells } from '../../shared/analysis/cellBytes.ts';
 import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { answerPlan } from '../../shared/sampling/plan.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
+import { Estate } from '../../server/models/Estate.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Block } from '../../server/models/Block.ts';
 import { MailMessage } from '../../server/models/MailMessage.ts';
@@ -180,6 +181,26 @@ describe('a plan', () => {
     expect(answerPlan(before, made.choices).counts.walkingHours * 3600).toBeLessThan(1.25 * made.walk!.walkingS);
     const slow = await plan({ secondsPerVine: 20, zoneSeconds: { 2: 100 }, pace: { kmPerHour: made.choices.pace.kmPerHour / 2 } });
     expect(slow.hours - made.hours).toBeCloseTo(made.walk!.walkingS / 3600, 6);
+  });
+
+  it('begins with the walking speed and set-up time of the estate, where none are sent', async () => {
+    const usual = await plan();
+    expect([usual.choices.secondsPerVine, usual.choices.pace.kmPerHour]).toEqual([15, 3.01]);
+    const { settings } = await Estate.query().findById(estate.estateId).throwIfNotFound();
+    await Estate.query().findById(estate.estateId).patch({ settings: { ...settings, setUpSeconds: 40, walkingKmPerHour: 6.02 } });
+    try {
+      expect(((await manager.get(`${base()}/zonings/${place.zoningId}/plan-basis`)).body as PlanBasis).settings).toMatchObject({ setUpSeconds: 40, walkingKmPerHour: 6.02 });
+      const own = await plan();
+      expect([own.choices.secondsPerVine, own.choices.pace.kmPerHour]).toEqual([40, 6.02]);
+      expect(own.walk!.walkingS).toBeCloseTo(usual.walk!.walkingS / 2, 6);
+      expect(own.walk!.serviceS - usual.walk!.serviceS).toBe(25 * usual.targets.length);
+      const typed = await plan({ secondsPerVine: 15, pace: { kmPerHour: 3.01, onSlopes: false } });
+      expect([typed.choices.secondsPerVine, typed.choices.pace]).toEqual([15, { kmPerHour: 3.01, onSlopes: false }]);
+      // A plan keeps what it was made with.
+      expect(((await manager.get(`${base()}/plans/${usual.id}`)).body as PlanView).choices.secondsPerVine).toBe(15);
+    } finally {
+      await Estate.query().findById(estate.estateId).patch({ settings });
+    }
   });
 
   it('gives reserves to the share of vines that is asked for, first drawn first', async () => {

@@ -48,7 +48,7 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
   const isShort = measures.some(({ code }) => (own.get(code)?.length ?? 0) < enoughOwnReadings);
   const terrain = await loadTerrain(estateId, ground);
   const others = isShort ? await historyOfOtherBlocks(estateId, ground.block.id, yearOf) : new Map<string, HistoryReading[]>();
-  const { floorVines, impracticalSamples, dayHours, costPerHour, currency } = estateSettings.parse(estate.settings);
+  const { floorVines, impracticalSamples, dayHours, costPerHour, currency, walkingKmPerHour, setUpSeconds } = estateSettings.parse(estate.settings);
   return {
     zoningId: zoning.id,
     zoningNumber: zoning.number,
@@ -68,7 +68,7 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
     pilot: pilot === null ? null : { planId: pilot.planId, name: pilot.name, vines: pilot.vines, read: new Set(zoned.filter(({ roundId }) => roundId !== null && pilot.roundIds.has(roundId)).map(({ vineKey }) => vineKey)).size },
     walks: trialWalks({ rows: ground.rows, table: ground.vines, vines: planGround.drawable, gateXY: planGround.gateXY, ...pacedGround(usualPace, terrain) }),
     isWalkLaid: false,
-    settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency },
+    settings: { floorVines, impracticalSamples, dayHours, costPerHour, currency, walkingKmPerHour, setUpSeconds },
   };
 }
 

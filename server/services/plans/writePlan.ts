@@ -1,6 +1,7 @@
 import { randomInt } from 'node:crypto';
 import type { Transaction } from 'objection';
 import type { z } from 'zod';
+import { estateSettings } from '../../../shared/contracts/estate.ts';
 import type { NewPlan, PlanChange, planRedraw } from '../../../shared/contracts/planChoices.ts';
 import type { PlanView } from '../../../shared/contracts/plans.ts';
 import { planChoices } from '../../../shared/contracts/planChoices.ts';
@@ -8,6 +9,7 @@ import { pooledBasis } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
+import { Estate } from '../../models/Estate.ts';
 import { fromGeoJson } from '../../models/geometry.ts';
 import { Plan } from '../../models/Plan.ts';
 import { Quota } from '../../models/Quota.ts';
@@ -20,7 +22,9 @@ import { say } from '../../sentences/say.ts';
 const newSeed = () => randomInt(0, 2_147_483_647);
 
 /** Makes a plan: counts, vines, reserves and walk, stored together with what they were made from. */
-export async function makePlan(access: Access, zoningId: string, { name, seed = newSeed(), ...choices }: NewPlan): Promise<PlanView> {
+export async function makePlan(access: Access, zoningId: string, { name, seed = newSeed(), ...asked }: NewPlan): Promise<PlanView> {
+  const { walkingKmPerHour, setUpSeconds } = estateSettings.parse((await Estate.query().findById(access.estateId).throwIfNotFound()).settings);
+  const choices = { ...asked, secondsPerVine: asked.secondsPerVine ?? setUpSeconds, pace: { ...asked.pace, kmPerHour: asked.pace.kmPerHour ?? walkingKmPerHour } };
   const composed = await composePlan(access.estateId, zoningId, { choices, seed });
   const planId = await Plan.transaction(async (trx) => {
     const { basis } = composed;

@@ -61,6 +61,21 @@ function sparedAround(counts: number[], { costs, minimum, used, keeps, apart }: 
   }
 }
 
+/** Samples added, each time where they mend most for their cost, until every limit holds; null where even the maximum breaks one. */
+export function grownCounts(start: readonly number[], { costs, maximum, used, keeps }: CheaperAsk): number[] | null {
+  const counts = [...start];
+  while (!keeps(counts)) {
+    const open = costs.map((_, i) => i).filter((i) => counts[i]! < maximum[i]!);
+    if (open.length === 0) return null;
+    const now = used(counts);
+    const gains = open.map((i) => (now - used(counts.map((n, k) => (k === i ? n + 1 : n)))) / costs[i]!);
+    const best = open[Math.max(0, gains.indexOf(Math.max(...gains)))]!;
+    // A thirtieth at once of many: what that is too much is taken away again in `cheaperCounts`.
+    counts[best] = Math.min(maximum[best]!, counts[best]! + 1 + Math.floor(counts[best]! / 30));
+  }
+  return counts;
+}
+
 /** Samples added outside zone `apart` until the limits hold; null when that costs too much. */
 function mendedBelow(counts: number[], ask: CheaperAsk & { apart: number; below: number }): number[] | null {
   const { costs, maximum, used, keeps, apart, below } = ask;

@@ -14,6 +14,10 @@ export interface LeastCostProblem {
   readonly terms: readonly (readonly number[])[];
   /** Target variance plus that constant, per measure. */
   readonly limits: readonly number[];
+  /** Counts that are good enough to begin with; only cheaper ones are sought then. */
+  readonly start?: readonly number[];
+  /** What counts must keep beside the limits. */
+  readonly keeps?: (counts: readonly number[]) => boolean;
 }
 
 export interface LeastCostAnswer {
@@ -46,7 +50,7 @@ export function leastCostCounts(problem: LeastCostProblem): LeastCostAnswer {
   }
   const multipliers = solveMultipliers(problem);
   const relaxed = relaxedCounts(problem, multipliers);
-  const start = roundedStart(problem, relaxed);
+  const start = problem.start ?? roundedStart(problem, relaxed);
   const { counts, proved, lowerBound } = searchAround(problem, multipliers, start);
   const prices = multipliers.map((multiplier, j) => multiplier * limits[j]!);
   const priceSum = prices.reduce((sum, price) => sum + price, 0);
@@ -160,7 +164,7 @@ function candidatesWithin(zone: PricedZone, gap: number): Candidate[] {
 
 /** Exhaustive search below the best cost so far; of equally cheap answers the one with most room under its limits. */
 function searchAround(problem: LeastCostProblem, multipliers: readonly number[], start: readonly number[]): { counts: number[]; proved: boolean; lowerBound: number } {
-  const { costs, minimum, maximum, terms, limits } = problem;
+  const { costs, minimum, maximum, terms, limits, keeps } = problem;
   const prices = priced(problem, multipliers);
   const zones = costs.map((cost, i) => ({ cost, price: prices[i]!, low: minimum[i]!, high: maximum[i]! }));
   const slack = 1e-9 * (1 + costOfCounts(costs, start));
@@ -186,6 +190,7 @@ function searchAround(problem: LeastCostProblem, multipliers: readonly number[],
     if (zone === costs.length) {
       const share = Math.max(...state.used.map((value, j) => value / limits[j]!));
       if (state.cost > bestCost + slack || (state.cost > bestCost - slack && share >= bestShare)) return;
+      if (keeps && !keeps(counts)) return;
       best = [...counts];
       bestCost = Math.min(bestCost, state.cost);
       bestShare = share;

@@ -1,6 +1,6 @@
 import { finiteTerm, minimumOf, maximumOf, targetVariance, totalVines } from './allocate.ts';
 import { blockSampleSize } from './blockSampleSize.ts';
-import { cheaperCounts } from './cheaperCounts.ts';
+import { cheaperCounts, grownCounts, type CheaperAsk } from './cheaperCounts.ts';
 import { leastCostCounts, type LeastCostAnswer, type LeastCostProblem } from './leastCost.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { criticalT, criticalZ } from './quantiles.ts';
@@ -73,21 +73,11 @@ export function leastCostForAll(zones: readonly SharedZone[], measures: readonly
     checkMargin(margin);
     checkConfidence(confidence);
   }
-  let targets = measures.map(({ margin, confidence }) => targetVariance(margin, criticalZ(confidence)));
   const parts = measures.map((measure) => varianceTerms(zones, measure));
-  let answer = solve(zones, measures, targets);
-  // The t factor depends on the counts that it decides; a few rounds settle it, always on the safe side.
-  for (let round = 0; factor === 't' && round < 12; round++) {
-    const strict = measures.map((measure, j) => Math.min(targets[j]!, ownTarget(measure, parts[j]!, answer.counts)));
-    if (strict.every((target, j) => varianceOf(parts[j]!, answer.counts) <= target * KEPT)) break;
-    targets = strict;
-    answer = solve(zones, measures, targets);
-  }
-  if (factor === 't' && answer.reached) {
-    const counts = cheapestAround(zones, measures, answer.counts);
-    answer = { ...answer, counts, cost: counts.reduce((sum, n, i) => sum + n * costOf(zones[i]!), 0) };
-    targets = measures.map((measure, j) => ownTarget(measure, parts[j]!, counts));
-  }
+  const asKnown = measures.map(({ margin, confidence }) => targetVariance(margin, criticalZ(confidence)));
+  const known = solve(zones, measures, asKnown);
+  const answer = factor === 't' && known.reached ? withOwnFactors(zones, measures, known) : known;
+  const targets = factor === 't' && answer.reached ? measures.map((measure, j) => ownTarget(measure, parts[j]!, answer.counts)) : asKnown;
   const order = answer.weights.map((weight, j) => ({ weight, code: measures[j]!.code })).sort((a, b) => b.weight - a.weight);
   const overMinimum = answer.counts.some((n, i) => n > minimumOf({ ...zones[i]!, sd: 0 }));
   return {
@@ -120,14 +110,44 @@ function keepsOwnTarget({ margin, confidence }: MeasureDemand, parts: VarianceOf
   return keptAt(Math.ceil(df)) && keptAt(df);
 }
 
-/** The rounds above stay on the safe side, so a set with a factor of its own may be a few samples cheaper than `counts`. */
-function cheapestAround(zones: readonly SharedZone[], measures: readonly MeasureDemand[], counts: readonly number[]): number[] {
+/**
+ * The cheapest counts with Student's t at the degrees of freedom that they give themselves. `known` is the answer with
+ * spreads taken as known, which is never dearer. Counts that keep their own factor are grown from it and made cheaper,
+ * and then all that could be cheaper still are searched.
+ */
+function withOwnFactors(zones: readonly SharedZone[], measures: readonly MeasureDemand[], known: LeastCostAnswer): LeastCostAnswer {
+  const ask = askOf(zones, measures);
+  const costs = zones.map(costOf);
+  const priced = (answer: LeastCostAnswer, counts: readonly number[]) => ({ ...answer, counts, cost: costs.reduce((sum, cost, i) => sum + cost * counts[i]!, 0) });
+  if (ask.keeps(known.counts)) return known;
+  const grown = grownCounts(known.counts, ask);
+  if (grown === null) return { ...priced(known, ask.maximum), relaxed: ask.maximum, weights: measures.map(() => 0), reached: false, proved: true };
+  const start = cheapestAround(zones, measures, grown);
+  const most = priced(known, start).cost / Math.min(...costs);
+  const least = measures.map((measure) => targetVariance(measure.margin, criticalT(measure.confidence, mostDegrees(measure, zones, most))));
+  return solve(zones, measures, least, { start, keeps: ask.keeps });
+}
+
+/** Satterthwaite's degrees of freedom never exceed those of all zones together. */
+function mostDegrees({ spreadDfs }: MeasureDemand, zones: readonly SharedZone[], mostSamples: number): number {
+  const ofPilots = zones.map((_, i) => spreadDfs?.[i] ?? null).filter((df) => df !== null);
+  return ofPilots.reduce((sum, df) => sum + df, 0) + Math.max(1, mostSamples - zones.length);
+}
+
+/** How counts are judged on the way to cheaper ones; `targets`: fixed variances to measure the share that is used by, which is rough but quick. */
+function askOf(zones: readonly SharedZone[], measures: readonly MeasureDemand[], targets?: readonly number[]): CheaperAsk {
   const limits = zones.map((zone) => ({ ...zone, sd: 0 }));
   const parts = measures.map((measure) => varianceTerms(zones, measure));
-  const start = measures.map((measure, j) => ownTarget(measure, parts[j]!, counts));
-  const used = (tried: readonly number[]) => parts.reduce((most, part, j) => Math.max(most, varianceOf(part, tried) / start[j]!), -Infinity);
+  const targetOf = (j: number, tried: readonly number[]) => targets?.[j] ?? ownTarget(measures[j]!, parts[j]!, tried);
+  const used = (tried: readonly number[]) => parts.reduce((most, part, j) => Math.max(most, varianceOf(part, tried) / targetOf(j, tried)), -Infinity);
   const keeps = (tried: readonly number[]) => measures.every((measure, j) => keepsOwnTarget(measure, parts[j]!, tried));
-  return cheaperCounts(counts, { costs: zones.map(costOf), minimum: limits.map(minimumOf), maximum: limits.map(maximumOf), used, keeps });
+  return { costs: zones.map(costOf), minimum: limits.map(minimumOf), maximum: limits.map(maximumOf), used, keeps };
+}
+
+/** `counts` made cheaper in steps. */
+function cheapestAround(zones: readonly SharedZone[], measures: readonly MeasureDemand[], counts: readonly number[]): number[] {
+  const targets = measures.map((measure) => ownTarget(measure, varianceTerms(zones, measure), counts));
+  return cheaperCounts(counts, askOf(zones, measures, targets));
 }
 
 /** For one measure: counts shared by spread and cost, made as cheap as they can be. Much quicker than the programme for several. */
@@ -137,10 +157,11 @@ export function leastCostForOne(zones: readonly SharedZone[], measure: MeasureDe
   return { counts: reached && !atMinimum ? cheapestAround(zones, [measure], counts) : counts, atMinimum };
 }
 
-function solve(zones: readonly SharedZone[], measures: readonly MeasureDemand[], targets: readonly number[]): LeastCostAnswer {
+function solve(zones: readonly SharedZone[], measures: readonly MeasureDemand[], targets: readonly number[], from: Pick<LeastCostProblem, 'start' | 'keeps'> = {}): LeastCostAnswer {
   const all = totalVines(zones);
   const terms = measures.map(({ spreads }) => zones.map((zone, i) => ((zone.vines / all) * spreads[i]!) ** 2));
   const problem: LeastCostProblem = {
+    ...from,
     costs: zones.map((zone) => zone.cost ?? 1),
     minimum: zones.map((zone) => minimumOf({ ...zone, sd: 0 })),
     maximum: zones.map((zone) => maximumOf({ ...zone, sd: 0 })),

@@ -248,6 +248,35 @@ describe('several measures on one walk', () => {
     expect(answer.cost).toBeLessThan(answer.lowerBound * 1.02);
   });
 
+  it('is as cheap as brute force where Student’s factor moves with the counts, from two samples a zone', () => {
+    // Cochran 1977 §5.4 with the degrees of freedom of Satterthwaite 1946, over all counts that cost less.
+    const random = seededRandom(12);
+    for (let problem = 0; problem < 60; problem++) {
+      const zones = [0, 1, 2].map(() => ({ vines: 9 + Math.floor(random() * 300), cost: 140 + 60 * Math.floor(random() * 3), minimum: 2, maximum: 9 + Math.floor(random() * 9) }));
+      const demands = ['first', 'second', 'third'].map((code) => ({ code, margin: 0.45 + 0.4 * random(), confidence: random() < 0.5 ? 0.9 : 0.95, spreads: zones.map(() => 0.4 + 1.2 * random()) }));
+      const keeps = (counts: readonly number[]) => demands.every((demand) => blockPrecision(zones.map((zone, i) => ({ ...zone, sd: demand.spreads[i]! })), counts, demand).halfWidth <= demand.margin * (1 + 1e-12));
+      const costOf = (counts: readonly number[]) => counts.reduce((sum, n, i) => sum + n * zones[i]!.cost, 0);
+      const most = zones.map(({ vines, maximum }) => Math.min(vines, maximum));
+      if (!keeps(most)) continue;
+      const answer = leastCostForAll(zones, demands);
+      let least = Infinity;
+      for (let a = 2; a <= most[0]!; a++) for (let b = 2; b <= most[1]!; b++) for (let c = 2; c <= most[2]!; c++) if (costOf([a, b, c]) < Math.min(least, answer.cost + 1) && keeps([a, b, c])) least = costOf([a, b, c]);
+      expect(answer.reached && keeps(answer.counts)).toBe(true);
+      expect(answer.cost).toBe(least);
+    }
+  });
+
+  it('does not ask for every vine because two samples a zone would have few degrees of freedom', () => {
+    const zones = [{ vines: 9, cost: 260, minimum: 2 }, { vines: 400, cost: 140, minimum: 2, maximum: 280 }, { vines: 158, cost: 260, minimum: 2, maximum: 25 }];
+    const demands = [
+      { code: 'first', margin: 0.39, confidence: 0.9, spreads: [1.18, 0.93, 0.56] },
+      { code: 'second', margin: 0.74, confidence: 0.99, spreads: [0.42, 1.84, 0.64] },
+      { code: 'third', margin: 0.55, confidence: 0.95, spreads: [1.16, 0.44, 1.39] },
+    ];
+    // By every set of counts, in Python with scipy 1.17.
+    expect(leastCostForAll(zones, demands)).toMatchObject({ counts: [2, 25, 5], reached: true });
+  });
+
   it('says when not even all vines keep a limit', () => {
     const capped = zones.map((zone) => ({ ...zone, maximum: 4 }));
     expect(leastCostForAll(capped, measures)).toMatchObject({ reached: false, counts: [4, 4, 4] });

@@ -91,6 +91,8 @@ export const planChoices = z.object({
   revisit: z.enum(['same', 'new']).default('same'),
   /** How two readings of one vine go together from visit to visit; 0 when they do not. */
   correlation: z.number().min(0).max(0.99).default(0.5),
+  /** Share of visits in which a change between two visits shall be noticed; 0.8 by common practice. */
+  changePower: z.number().min(0.5).max(0.99).default(0.8),
   spread: spreadChoices.prefault({}),
   /** Speak for the vines of this zone, or for more than them (the process, another season): then no zone runs out of vines. */
   population: z.enum(['zone', 'endless']).default('zone'),

@@ -2,7 +2,7 @@ import { combineLinearly } from './combineEstimates.ts';
 import { ceilGuarded } from './sampleSize.ts';
 import { checkConfidence, checkMargin } from './margins.ts';
 import { intervalOf, type Estimate, type Interval, type SampleFacts } from './precision.ts';
-import { criticalT, criticalZ, normalUpperQuantile } from './quantiles.ts';
+import { criticalT, criticalZ, normalUpperQuantile, studentTUpperQuantile } from './quantiles.ts';
 import { sdAboveRounding, summarise } from './variances.ts';
 
 /**
@@ -60,19 +60,27 @@ export interface DetectableQuestion {
   readonly confidence: number;
   /** Wanted chance of noticing a change of this size; left out, a change is just told from none. */
   readonly power?: number;
-  /** 'z' takes the spread as known. */
+  /** 'z' takes the spread as known, as is usual with a power; else 't'. */
   readonly factor?: 't' | 'z';
 }
 
-/** Smallest change that n vines per visit can tell from none. Example: sd 0.9, 10 new vines each, 95 % → 0.845605. */
+/**
+ * Smallest change that n vines per visit can tell from none. Example: sd 0.9, 10 new vines each, 95 % → 0.845605. With a
+ * power, the change noticed in that share of visits, by the quantiles of NIST/SEMATECH e-Handbook §7.2.2.2; a power of 0.5
+ * is the change that is just told from none.
+ */
 export function smallestDetectableChange(question: DetectableQuestion): number {
-  const { sd, n, vines, confidence, power, factor = 't' } = question;
+  const { sd, n, vines, confidence, power, factor = power === undefined ? 't' : 'z' } = question;
   checkConfidence(confidence);
   const error = sd * Math.sqrt((vines === 'new' ? 2 : 1) / n);
-  if (power !== undefined) return (criticalZ(confidence) + normalUpperQuantile(1 - power)) * error;
-  if (factor === 'z') return criticalZ(confidence) * error;
-  const df = vines === 'new' ? 2 * (n - 1) : n - 1;
-  return df > 0 ? criticalT(confidence, df) * error : Number.NaN;
+  if (factor === 'z') return (criticalZ(confidence) + (power === undefined ? 0 : normalUpperQuantile(1 - power))) * error;
+  const df = dfOfChange(vines, n);
+  return df > 0 ? (criticalT(confidence, df) + (power === undefined ? 0 : studentTUpperQuantile(1 - power, df))) * error : Number.NaN;
+}
+
+/** Degrees of freedom between two visits to n vines each: pairs, or two samples with one spread. */
+export function dfOfChange(vines: DetectableQuestion['vines'], n: number): number {
+  return vines === 'new' ? 2 * (n - 1) : n - 1;
 }
 
 /** Vines per visit to see a change, not rounded, with the spread taken as known. Example: sd 0.9, 0.5 °Brix → 24.893. */

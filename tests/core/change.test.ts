@@ -3,6 +3,7 @@ import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { changeBetween, changeOfSameVines, changeWithCommonSpread, sdOfDifferences, smallestDetectableChange, vinesToSeeChange, vinesToSeeChangeNormal, wordForChange } from '../../shared/sampling/change.ts';
 import { meanEstimate } from '../../shared/sampling/precision.ts';
 import { sdAboveRounding, summarise } from '../../shared/sampling/variances.ts';
+import { detectionPower } from '../../shared/sampling/power.ts';
 
 function expectRelative(actual: number, expected: number, tolerance = 1e-6): void {
   expect(Math.abs(actual - expected)).toBeLessThanOrEqual(tolerance * Math.abs(expected));
@@ -18,6 +19,19 @@ describe('smallest detectable change', () => {
     expectRelative(smallestDetectableChange(question), 0.845605, 1e-6);
     expectRelative(smallestDetectableChange({ ...question, factor: 'z' }), 0.78887, 1e-6);
     expectRelative(smallestDetectableChange({ ...question, power: 0.8 }), 1.127616, 1e-6);
+  });
+
+  it('that is noticed in a chosen share of visits follows from two factors of Student', () => {
+    // t tables: 18 degrees of freedom, 2.101 at 2.5 % and 0.862 at 20 %, 1.330 at 10 %.
+    const question = { sd: 0.9, n: 10, vines: 'new', confidence: 0.95, factor: 't' } as const;
+    expectRelative(smallestDetectableChange({ ...question, power: 0.8 }), (2.101 + 0.862) * 0.9 * Math.sqrt(0.2), 3e-4);
+    expectRelative(smallestDetectableChange({ ...question, power: 0.9 }), (2.101 + 1.33) * 0.9 * Math.sqrt(0.2), 3e-4);
+    expectRelative(smallestDetectableChange({ ...question, power: 0.5 }), smallestDetectableChange(question), 1e-9);
+    // Against the exact power of a test of pairs by the noncentral t.
+    for (const n of [6, 12, 40]) {
+      const difference = smallestDetectableChange({ ...question, n, vines: 'same', power: 0.8 });
+      expect(Math.abs(detectionPower({ spread: 0.9, difference, alpha: 0.05, power: 0.8, sides: 2 }, n) - 0.8)).toBeLessThan(0.02);
+    }
   });
 
   it('says how many vines show half a degree', () => {

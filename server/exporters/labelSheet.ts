@@ -1,6 +1,7 @@
 import PDFDocument from 'pdfkit';
 import QRCode from 'qrcode';
 import { spellLabelCode } from '../../shared/field/labelCode.ts';
+import { latLonText } from '../../shared/geo/latLonText.ts';
 import { labelTexts, type LabelLanguage } from './labelTexts.ts';
 
 /** What stands on a label beside its code; null for a blank label, which has lines to write on. */
@@ -9,7 +10,7 @@ export interface LabelFacts {
   date: string;
   zone: string;
   /** Null for a bag that takes a whole zone. */
-  vine: { row: string; number: number } | null;
+  vine: { row: string; number: number; place?: readonly [lon: number, lat: number] | undefined } | null;
   stop: number;
   measures: string;
   person: string;
@@ -102,7 +103,8 @@ function drawFacts(pdf: PDFKit.PDFDocument, facts: LabelFacts, { x, y, room, tex
   // Which vine or stop it is must not be cut off: the letters shrink before a number does.
   const whole = (words: string, font: string, size: number, down: number) => line(words, font, fittingSize(pdf, words, { font, size, room }), down);
   whole(`${texts.zone} ${zone}`, 'Helvetica-Bold', 4.4, 0);
-  whole(vine ? `${texts.row} ${vine.row}  ${texts.vine} ${vine.number}` : `${texts.wholeZone} ${stop}`, vine ? 'Helvetica-Bold' : 'Helvetica', vine ? 4.4 : 3, 5.2);
+  const vineWords = vine?.place ? latLonText(vine.place) : vine ? `${texts.row} ${vine.row}  ${texts.vine} ${vine.number}` : null;
+  whole(vineWords ?? `${texts.wholeZone} ${stop}`, vine ? 'Helvetica-Bold' : 'Helvetica', vine ? 4.4 : 3, 5.2);
   line(`${block}, ${date}`, 'Helvetica', 3, 10.6);
   line(vine ? `${texts.stop} ${stop}, ${person}` : person, 'Helvetica', 3, 14.2);
   line(measures, 'Helvetica', 3, 17.8);

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { LABEL_LETTERS, readLabelCode } from '../field/labelCode.ts';
-import { id, isoTime } from './common.ts';
+import { id, isoTime, lonLat } from './common.ts';
 import { refusalCode, refusalFacts } from './readings.ts';
 
 /** A label as typed or scanned; what reaches the services is the bare code. */
@@ -76,6 +76,8 @@ export const bagLine = z.object({
   /** First vine, as people in the block count it. */
   rowLabel: z.string().nullable(),
   vineNumber: z.number().int().nullable(),
+  /** Where it stands, given where vines stand without rows. */
+  vinePlace: lonLat.optional(),
   berries: z.number().int().nullable(),
   sunSide: z.number().int().nullable(),
   shadeSide: z.number().int().nullable(),

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { bagClash, settledBagClash } from './bags.ts';
-import { id } from './common.ts';
+import { id, lonLat } from './common.ts';
 
 /**
  * What two records disagree about. `sameVine`: one vine and measure twice. `sameTarget`: a target and its reserve both read.
@@ -39,6 +39,8 @@ export const conflictReading = z.object({
   unit: z.string(),
   rowLabel: z.string(),
   vine: z.number().int(),
+  /** Given where vines stand without rows. */
+  place: lonLat.optional(),
   /** As the reader saw it, where that is not the name of today. */
   seenAs: z.object({ row: z.string(), vine: z.number().int() }).nullable(),
   isReserve: z.boolean(),

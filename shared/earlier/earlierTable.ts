@@ -9,6 +9,7 @@ export interface EarlierBlock {
   readonly plantedYear: number | null;
   readonly epsg: number;
   readonly vineOneEnd: 'start' | 'end';
+  readonly withoutRows?: boolean;
   readonly named: readonly { readonly rowId: string; readonly label: string; readonly labelWas: string | null }[];
   readonly rows: readonly RowXY[];
   readonly vines: VineTable;
@@ -28,6 +29,8 @@ export interface EarlierPlace {
   readonly rowLabel: string;
   readonly ordinal: number;
   readonly vineNumber: number;
+  /** Longitude and latitude, where vines stand without rows. */
+  readonly place?: readonly [number, number] | undefined;
   /** From the point in the table to the vine; null where row and number name the vine. */
   readonly metres: number | null;
 }

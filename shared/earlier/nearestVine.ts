@@ -1,5 +1,5 @@
 import type { LonLat } from '../geo/coordinates.ts';
-import { toUtm } from '../geo/utm.ts';
+import { fromUtm, toUtm } from '../geo/utm.ts';
 import { vineLabel } from '../geo/numbering.ts';
 import { vineIndex } from '../geo/vines.ts';
 import { NearestPoints } from '../geo/vinesNearest.ts';
@@ -10,7 +10,7 @@ export function placeOf(block: EarlierBlock, vine: number, metres: number | null
   const row = block.vines.row[vine]!;
   const ordinal = block.vines.ordinal[vine]!;
   const { rowId, label } = block.named[row]!;
-  return { blockId: block.id, rowId, rowLabel: label, ordinal, vineNumber: vineLabel(block.rows[row]!, ordinal, block.vineOneEnd), metres };
+  return { blockId: block.id, rowId, rowLabel: label, ordinal, vineNumber: vineLabel(block.rows[row]!, ordinal, block.vineOneEnd), ...(block.withoutRows ? { place: fromUtm([block.vines.x[vine]!, block.vines.y[vine]!], block.epsg) } : {}), metres };
 }
 
 /** Metres from a position to a vine that was found. */

@@ -35,6 +35,6 @@ export function summariseEarlier(understood: Pick<UnderstoodEarlier, 'lines' | '
       .map(({ span, isNew }) => ({ name: span.name, isNew, readings: held(span) }))
       .filter(({ readings }) => readings > 0),
     refusedLines: new Set(understood.refused.map(({ line }) => line)).size,
-    examples: inOrder.filter((_entry, at) => at % step === 0).slice(0, shownExamples).map(({ line, blockId, rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd }) => ({ line, blockName: nameOf.get(blockId) ?? '', rowLabel, vineNumber, metres, day, measure, value, typed, unitTyped, odd })),
+    examples: inOrder.filter((_entry, at) => at % step === 0).slice(0, shownExamples).map(({ line, blockId, rowLabel, vineNumber, place, metres, day, measure, value, typed, unitTyped, odd }) => ({ line, blockName: nameOf.get(blockId) ?? '', rowLabel, vineNumber, ...(place ? { place: [...place] as [number, number] } : {}), metres, day, measure, value, typed, unitTyped, odd })),
   };
 }

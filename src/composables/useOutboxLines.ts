@@ -4,6 +4,7 @@ import { spellLabelCode } from '../../shared/field/labelCode.ts';
 import { useFormat } from './useFormat.ts';
 import { useMeasureName } from './useMeasureName.ts';
 import { useRefusalWords } from './useRefusalWords.ts';
+import { useVineName } from './useVineName.ts';
 import { useFieldStore } from '../stores/field.ts';
 import type { Entry, KeptBag, KeptPhoto } from '../offline/fieldDatabase.ts';
 import type { IconName } from '../components/base/iconPaths.ts';
@@ -24,7 +25,7 @@ export interface OutboxLine {
 export function useOutboxLines(): ComputedRef<readonly OutboxLine[]> {
   const { t } = useI18n();
   const format = useFormat();
-  const [field, nameOf, refusalWords] = [useFieldStore(), useMeasureName(), useRefusalWords()];
+  const [field, nameOf, refusalWords, vineName] = [useFieldStore(), useMeasureName(), useRefusalWords(), useVineName()];
 
   function what({ reading, finding }: Entry): string {
     if (finding) return t(`field.reason.${finding.state}`);
@@ -34,8 +35,8 @@ export function useOutboxLines(): ComputedRef<readonly OutboxLine[]> {
     if (outcome?.state === 'refused') return refusalWords(outcome);
     return outcome?.state === 'conflict' ? t('field.conflict') : '';
   }
-  const ofEntry = (entry: Entry): OutboxLine => ({ ...common(entry), icon: entry.kind === 'finding' ? 'missingVine' : 'vine', what: what(entry), place: t('field.rowVine', { row: entry.row, vine: entry.vine }), note: note(entry) });
-  const ofPhoto = (photo: KeptPhoto): OutboxLine => ({ ...common(photo), icon: 'photo', what: t('field.photo'), place: t('field.rowVine', { row: photo.row, vine: photo.vine }), note: '' });
+  const ofEntry = (entry: Entry): OutboxLine => ({ ...common(entry), icon: entry.kind === 'finding' ? 'missingVine' : 'vine', what: what(entry), place: vineName({ ...entry, rowLabel: entry.row, vineNumber: entry.vine }), note: note(entry) });
+  const ofPhoto = (photo: KeptPhoto): OutboxLine => ({ ...common(photo), icon: 'photo', what: t('field.photo'), place: vineName({ ...photo, rowLabel: photo.row, vineNumber: photo.vine }), note: '' });
   const ofBag = (bag: KeptBag): OutboxLine => ({ ...common(bag), icon: 'bag', what: t('field.bag.closed', { code: spellLabelCode(bag.code) }), place: t('field.bag.ofZone', { zone: bag.zone, n: bag.bag.vines.length }, bag.bag.vines.length), note: bag.outcome?.state === 'refused' ? refusalWords(bag.outcome) : '' });
 
   return computed(() => [...field.all.map(ofEntry), ...field.photos.map(ofPhoto), ...field.bags.map(ofBag)].sort((a, b) => Number(a.isReceived) - Number(b.isReceived) || b.at.localeCompare(a.at)));

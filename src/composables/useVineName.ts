@@ -8,8 +8,8 @@ export interface NamedVine {
   readonly place?: readonly [lon: number, lat: number] | undefined;
 }
 
-/** A vine as people find it: by row and vine, or by coordinates where there are no rows. */
-export function useVineName(): (vine: NamedVine) => string {
+/** A vine as people find it: by row and vine, or by coordinates where there are no rows. `within`: as a sentence goes on with it. */
+export function useVineName(): (vine: NamedVine, within?: 'within') => string {
   const { t } = useI18n();
-  return ({ rowLabel, vineNumber, place }) => (place ? latLonText(place) : t('field.rowVine', { row: rowLabel, vine: vineNumber }));
+  return ({ rowLabel, vineNumber, place }, within) => (place ? latLonText(place) : t(within ? 'field.rowVineWithin' : 'field.rowVine', { row: rowLabel, vine: vineNumber }));
 }

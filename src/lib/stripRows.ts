@@ -4,7 +4,7 @@ import { vineLabel, vineOrdinal } from '../../shared/geo/numbering.ts';
 import { toAlongAcross } from '../../shared/geo/rowFrame.ts';
 import type { BlockRows, VineRow } from '../../shared/geo/rows.ts';
 import { rowsFromStored } from '../../shared/geo/storedRows.ts';
-import { pointOnPiece } from '../../shared/geo/vines.ts';
+import { pointOnPiece, vineXY } from '../../shared/geo/vines.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
 import { isInside } from './mapPlaces.ts';
 
@@ -29,6 +29,7 @@ export interface StripBlock {
   readonly rowBearingDeg: number;
   readonly startPostColour: string | null;
   readonly endPostColour: string | null;
+  readonly withoutRows?: boolean;
 }
 
 export interface StripZoneArea {
@@ -105,12 +106,27 @@ function zoneRuns(zoneOfVine: readonly number[], fromEnd: boolean): { zone: numb
   return runs;
 }
 
+/** Where a vine stands, for blocks in which that is its name. */
+function placeOf({ withoutRows, epsg }: StripBlock, row: VineRow, ordinal: number): LonLat | undefined {
+  const xy = withoutRows ? vineXY(row, ordinal) : null;
+  return xy === null ? undefined : fromUtm(xy, epsg);
+}
+
+/** A place of the strip as people name what stands there. */
+export function namedPlace(block: StripBlock, rows: Pick<BlockRowsView, 'items' | 'numbering'>, at: { rowId: string; label: number }): { rowLabel: string; vineNumber: number; place?: LonLat | undefined } {
+  const item = rows.items.find(({ id }) => id === at.rowId);
+  const ordinal = ordinalOf(block, rows, at);
+  return { rowLabel: item?.label ?? '', vineNumber: at.label, place: item && ordinal !== null ? placeOf(block, rowOf(block, item), ordinal) : undefined };
+}
+
 /** What the crew found at a place, as people count it. */
 export interface ProposedVine {
   readonly rowId: string;
   readonly ordinal: number;
   readonly row: string;
   readonly vine: number;
+  /** Given where vines stand without rows. */
+  readonly place?: LonLat | undefined;
   readonly state: VineState;
   readonly noted?: { readonly by: string; readonly at: string };
 }
@@ -120,6 +136,6 @@ export function proposedVines(block: StripBlock, rows: Pick<BlockRowsView, 'item
   const laid = laidRows(block, rows).rows;
   return rows.items.flatMap(({ id, label, vines }, at) => {
     const row = laid[at];
-    return row ? vines.filter(({ proposed }) => proposed).map(({ ordinal, state, noted }) => ({ rowId: id, ordinal, row: label, vine: vineLabel(row, ordinal, rows.numbering.vineOneEnd), state, ...(noted ? { noted } : {}) })) : [];
+    return row ? vines.filter(({ proposed }) => proposed).map(({ ordinal, state, noted }) => ({ rowId: id, ordinal, row: label, vine: vineLabel(row, ordinal, rows.numbering.vineOneEnd), place: placeOf(block, row, ordinal), state, ...(noted ? { noted } : {}) })) : [];
   });
 }

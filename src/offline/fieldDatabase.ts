@@ -18,6 +18,8 @@ export interface Entry {
   /** Words for lists, so that they can be drawn without the round. */
   readonly row: string;
   readonly vine: number;
+  /** Given where vines stand without rows. */
+  readonly place?: readonly [lon: number, lat: number];
   readonly at: string;
   /** 0 while only on this phone, 1 once the server has answered for it: an index key, hence a number. */
   readonly received: 0 | 1;
@@ -49,6 +51,8 @@ export interface KeptPhoto {
   readonly ordinal: number;
   readonly row: string;
   readonly vine: number;
+  /** Given where vines stand without rows. */
+  readonly place?: readonly [lon: number, lat: number];
   readonly note: string;
   readonly picture: Blob;
   readonly at: string;

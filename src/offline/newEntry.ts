@@ -33,8 +33,8 @@ export interface Found {
 }
 
 /** What every entry has; its id is made here, at the tap, so that it may be sent any number of times. */
-function head({ estateId, personId, round }: Walk, { stop, vine }: Place): Pick<Entry, 'id' | 'estateId' | 'personId' | 'roundId' | 'row' | 'vine' | 'at' | 'received' | 'outcome'> {
-  return { id: newId(), estateId, personId, roundId: round.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, at: new Date().toISOString(), received: 0, outcome: null };
+function head({ estateId, personId, round }: Walk, { stop, vine }: Place): Pick<Entry, 'id' | 'estateId' | 'personId' | 'roundId' | 'row' | 'vine' | 'place' | 'at' | 'received' | 'outcome'> {
+  return { id: newId(), estateId, personId, roundId: round.id, row: vine.rowLabel || stop.rowLabel, vine: vine.vineNumber, ...(vine.place ? { place: vine.place } : {}), at: new Date().toISOString(), received: 0, outcome: null };
 }
 
 export function readingEntry(walk: Walk, place: Place, { measure, text, value, isOdd, supersedes, readBy }: Typed): Entry {
@@ -60,8 +60,8 @@ export function pickEntry(walk: Walk, place: Place): Entry {
 }
 
 export function photoEntry(walk: Walk, place: Place, { picture, note }: { readonly picture: Blob; readonly note: string }): KeptPhoto {
-  const { id, row, vine, at, estateId, personId, roundId } = head(walk, place);
-  return { id, estateId, personId, roundId, blockId: walk.round.blockId, rowId: place.vine.rowId, ordinal: place.vine.ordinal, row, vine, note, picture, at, received: 0 };
+  const { outcome: _none, ...common } = head(walk, place);
+  return { ...common, blockId: walk.round.blockId, rowId: place.vine.rowId, ordinal: place.vine.ordinal, note, picture, received: 0 };
 }
 
 /** Whether an entry belongs to a stop: by its target, or by the vine that was found to be something else. */

@@ -11,10 +11,12 @@ import { orNothing, type KeptBag } from '../offline/fieldDatabase.ts';
 /** Where a label is bound already, as far as this phone knows. */
 export interface LabelUse {
   readonly row: string | null;
+  /** Where its vine stands, given where there are no rows. */
+  readonly place?: readonly [lon: number, lat: number] | undefined;
   readonly person: string | null;
   readonly at: string | null;
   /** A vine of the bag that carries it, where this phone closed it. */
-  readonly vine: { readonly rowId: string } | null;
+  readonly vine: { readonly rowId: string; readonly ordinal: number } | null;
 }
 
 /** Bags as they are closed in the row. */
@@ -39,7 +41,7 @@ export const useFieldBagsStore = defineStore('fieldBags', () => {
 
   function usedBy(code: string): LabelUse | null {
     const other = others.value.find((line) => line.code === code && line.place !== 'void' && line.closedAt !== null);
-    return other ? { row: other.rowLabel, person: other.holder, at: other.closedAt, vine: null } : null;
+    return other ? { row: other.rowLabel, place: other.vinePlace, person: other.holder, at: other.closedAt, vine: null } : null;
   }
 
   /** Keeps a closed bag on the phone, to be sent with the rest. Answers where the label is bound already, if it is. */

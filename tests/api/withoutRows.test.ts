@@ -1,12 +1,20 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import type { BagLine } from '../../shared/contracts/bags.ts';
 import type { BlockView, ChangedBlock } from '../../shared/contracts/blocks.ts';
+import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { PlanView } from '../../shared/contracts/plans.ts';
 import type { PlanWalk } from '../../shared/contracts/planWalks.ts';
 import type { ResultsView } from '../../shared/contracts/results.ts';
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
+import { labelCode } from '../../shared/field/labelCode.ts';
 import { latLonText } from '../../shared/geo/latLonText.ts';
 import { toUtm } from '../../shared/geo/utm.ts';
+import { labelSheet } from '../../server/exporters/labelSheet.ts';
+import { AuditEntry } from '../../server/models/AuditEntry.ts';
+import { FieldPhoto } from '../../server/models/FieldPhoto.ts';
+import { Round } from '../../server/models/Round.ts';
+import { StoredFile } from '../../server/models/StoredFile.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { readPdf } from '../core/pdfText.ts';
 import { makeZonedBlock, type ZonedBlock } from './support/makeZonedBlock.ts';
@@ -90,5 +98,32 @@ describe('a block whose vines stand without rows', () => {
     const { values } = (await owner.get(`${base()}/zonings/${block.zoningId}/results`)).body as ResultsView;
     expect(Object.fromEntries(values.map(({ zone, mean }) => [zone, mean]))).toEqual({ 1: 30, 2: 40 });
     expect(values).toHaveLength(2);
+  });
+
+  it('is named by the same coordinates where records meet, in photos, on bags, on their labels and in the history', async () => {
+    const [round] = await Round.query().where({ planId: plan.id });
+    const [stop] = plan.targets;
+    const vine = { rowId: stop!.rowId, ordinal: stop!.ordinal };
+    const again = { ...vine, id: randomUUID(), value: 77, blockId: block.blockId, roundId: round!.id, targetId: stop!.id, measureCode: 'clusterCount', unit: 'clusters', takenAt: '2026-07-09T09:00:00Z', seenAs: { row: '999', vine: 1 } };
+    await (await app.as(crew.email)).post(`${base()}/readings`, { readings: [again] });
+    const { items: cards } = (await owner.get(`${base()}/conflicts`)).body as ConflictList;
+    // Numbers of places are no names here: that they changed is nothing to ask about.
+    expect(cards.map(({ kind }) => kind)).toEqual(['sameVine']);
+    expect(cards[0]!.readings.map(({ place, seenAs }) => ({ place, seenAs }))).toEqual([0, 1].map(() => ({ place: stop!.place, seenAs: null })));
+    await owner.post(`${base()}/conflicts/${cards[0]!.id}/settle`, { choice: 'keepOne', keptReadingId: again.id });
+    const deed = await AuditEntry.query().findOne({ action: 'conflicts.settle', subjectId: cards[0]!.id }).throwIfNotFound();
+    expect(deed.after).toMatchObject({ at: { place: stop!.place } });
+
+    const file = await StoredFile.query().insert({ estateId: estate.estateId, sha256: 'b'.repeat(64), bytes: 3, originalName: 'x.jpg', uploadedBy: crew.id });
+    await FieldPhoto.query().insert({ ...vine, id: randomUUID(), estateId: estate.estateId, blockId: block.blockId, roundId: round!.id, fileId: file.id, personId: crew.id, note: '', takenAt: new Date('2026-07-09T09:00:00Z') });
+    expect((await owner.get(`${base()}/field-photos`)).body.items).toMatchObject([{ place: stop!.place }]);
+
+    const bag = { id: randomUUID(), code: labelCode(4711), roundId: round!.id, blockId: block.blockId, vines: [vine], closedAt: '2026-07-09T09:10:00Z' };
+    expect((await owner.post(`${base()}/bags`, { bags: [bag] })).body.outcomes).toMatchObject([{ state: 'received' }]);
+    expect(((await owner.get(`${base()}/bags?round=${round!.id}&days=400`)).body as { items: BagLine[] }).items.map(({ vinePlace }) => vinePlace)).toEqual([stop!.place]);
+    const label = { block: 'Goblets', date: '9 Jul 2026', zone: '1', vine: { row: '1', number: 1, place: stop!.place }, stop: 1, measures: 'Cluster count', person: 'Nia Holt' };
+    const words = readPdf(await labelSheet([{ code: bag.code, facts: label }], { paper: 'a4', language: 'en', title: 'Labels' })).flatMap(({ texts }) => texts).join('\n');
+    expect(words).toContain(latLonText(stop!.place!));
+    expect(words).not.toContain('Row');
   });
 });

@@ -1,6 +1,5 @@
 import type { BagLine } from '../../../shared/contracts/bags.ts';
 import { may, reachOf } from '../../../shared/catalog/permissions.ts';
-import { vineLabel } from '../../../shared/geo/numbering.ts';
 import type { Access } from '../../access/access.ts';
 import { zoneOfBag } from '../../ground/bagZone.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -10,6 +9,7 @@ import { Reading } from '../../models/Reading.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { vineWords } from '../plans/viewPlan.ts';
 
 const usualDays = 45;
 const most = 600;
@@ -63,7 +63,7 @@ function placeOf(bag: Bag): BagLine['place'] {
   return bag.missingAt === null ? 'expected' : 'missing';
 }
 
-type Place = Pick<BagLine, 'blockName' | 'zone' | 'zoneName' | 'rowLabel' | 'vineNumber'>;
+type Place = Pick<BagLine, 'blockName' | 'zone' | 'zoneName' | 'rowLabel' | 'vineNumber' | 'vinePlace'>;
 
 /** Block, zone by the zones in force, and first vine in the block's own numbers; each block is laid out once. */
 async function placesOf(estateId: string, bags: readonly Bag[]): Promise<(bag: Bag) => Place> {
@@ -82,9 +82,9 @@ async function placesOf(estateId: string, bags: readonly Bag[]): Promise<(bag: B
   };
 }
 
-function firstVine(ground: BlockVines, bag: Bag): Pick<Place, 'rowLabel' | 'vineNumber'> {
+function firstVine(ground: BlockVines, bag: Bag): Pick<Place, 'rowLabel' | 'vineNumber' | 'vinePlace'> {
   const [first] = bag.vines;
-  const index = first ? ground.rowIndexOf.get(first.rowId) : undefined;
-  if (!first || index === undefined) return { rowLabel: null, vineNumber: null };
-  return { rowLabel: ground.stored[index]!.label, vineNumber: vineLabel(ground.rows.rows[index]!, first.ordinal, ground.block.vineOneEnd) };
+  if (!first || !ground.rowIndexOf.has(first.rowId)) return { rowLabel: null, vineNumber: null };
+  const { rowLabel, vineNumber, place } = vineWords(ground, first.rowId, first.ordinal);
+  return { rowLabel, vineNumber, ...(place ? { vinePlace: place } : {}) };
 }

@@ -47,7 +47,7 @@ async function earlierBlocks(estateId: string): Promise<EarlierBlock[]> {
   const out: EarlierBlock[] = [];
   for (const { id } of blocks) {
     const { block, stored, rows, vines } = await loadBlockVines(estateId, id);
-    out.push({ id, name: block.name, plantedYear: block.plantedYear, epsg: block.epsg, vineOneEnd: block.vineOneEnd, rows: rows.rows, vines, named: stored.map((row) => ({ rowId: row.id, label: row.label, labelWas: row.labelWas })) });
+    out.push({ id, name: block.name, plantedYear: block.plantedYear, epsg: block.epsg, vineOneEnd: block.vineOneEnd, withoutRows: block.withoutRows, rows: rows.rows, vines, named: stored.map((row) => ({ rowId: row.id, label: row.label, labelWas: row.labelWas })) });
   }
   return out;
 }

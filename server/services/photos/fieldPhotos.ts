@@ -76,8 +76,8 @@ export async function listPhotos(access: Access, filter: { blockId?: string }): 
   for (const blockId of new Set(photos.map((photo) => photo.blockId))) grounds.set(blockId, await loadBlockVines(estateId, blockId));
   return photos.map(({ id, blockId, rowId, ordinal, note, personId, takenAt }) => {
     const ground = grounds.get(blockId)!;
-    const { rowLabel, vineNumber } = vineWords(ground, rowId, ordinal);
-    return { id, blockId, blockName: ground.block.name, rowLabel, vine: vineNumber, note, person: nameFor(access, people, personId), takenAt: takenAt.toISOString() };
+    const { rowLabel, vineNumber, place } = vineWords(ground, rowId, ordinal);
+    return { id, blockId, blockName: ground.block.name, rowLabel, vine: vineNumber, ...(place ? { place } : {}), note, person: nameFor(access, people, personId), takenAt: takenAt.toISOString() };
   });
 }
 

@@ -4,10 +4,10 @@ import type { Reading } from '../../models/Reading.ts';
 import type { ReadingConflict } from '../../models/ReadingConflict.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 
-/** What the history calls a conflict by: its block, and the vine where it is about one. Row and number are those of the day of the deed. */
+/** What the history calls a conflict by: its block, and the vine where it is about one. Row, number and place are those of the day of the deed. */
 export interface ConflictPlace {
   readonly subjectName: string;
-  readonly at: { readonly row: string; readonly vine: number } | null;
+  readonly at: { readonly row: string; readonly vine: number; readonly place?: readonly [lon: number, lat: number] | undefined } | null;
 }
 
 export async function conflictPlace(trx: Transaction, { kind, estateId }: ReadingConflict, readings: readonly Reading[]): Promise<ConflictPlace> {
@@ -16,6 +16,6 @@ export async function conflictPlace(trx: Transaction, { kind, estateId }: Readin
   const ground = await loadBlockVines(estateId, first.blockId!, trx);
   const isOfRound = kind === 'oldZones' || kind === 'renumbered';
   if (isOfRound || first.rowId === null || first.ordinal === null) return { subjectName: ground.block.name, at: null };
-  const { rowLabel, vineNumber } = vineWords(ground, first.rowId, first.ordinal);
-  return { subjectName: ground.block.name, at: { row: rowLabel, vine: vineNumber } };
+  const { rowLabel, vineNumber, place } = vineWords(ground, first.rowId, first.ordinal);
+  return { subjectName: ground.block.name, at: { row: rowLabel, vine: vineNumber, ...(place ? { place } : {}) } };
 }

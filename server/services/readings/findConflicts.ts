@@ -90,6 +90,8 @@ async function findOldZones(trx: Transaction, access: Access, fresh: readonly Ne
 async function findRenumbered(trx: Transaction, access: Access, fresh: readonly NewReading[]): Promise<void> {
   for (const blockId of new Set(fresh.filter(({ seenAs }) => seenAs !== null).map((reading) => reading.blockId))) {
     const ground = await loadBlockVines(access.estateId, blockId, trx);
+    // Vines without rows are found by their coordinates, which no new numbers move.
+    if (ground.block.withoutRows) continue;
     const other = fresh.filter((reading) => {
       if (reading.blockId !== blockId || reading.seenAs === null || reading.rowId === null || reading.ordinal === null) return false;
       const { rowLabel, vineNumber } = vineWords(ground, reading.rowId, reading.ordinal);

@@ -72,9 +72,9 @@ function cardOf(conflict: ReadingConflict, { access, grounds, people, rounds, re
 }
 
 function readingOf(reading: VineReading, { access, people, ground }: { access: Access; people: readonly Person[]; ground: BlockVines }): ConflictCard['readings'][number] {
-  const { rowLabel, vineNumber } = vineWords(ground, reading.rowId ?? '', reading.ordinal ?? 0);
+  const { rowLabel, vineNumber, place } = vineWords(ground, reading.rowId ?? '', reading.ordinal ?? 0);
   const flags = reading.flags as string[];
-  const isRenamed = reading.seenAs !== null && (reading.seenAs.row !== rowLabel || reading.seenAs.vine !== vineNumber);
+  const isRenamed = !place && reading.seenAs !== null && (reading.seenAs.row !== rowLabel || reading.seenAs.vine !== vineNumber);
   return {
     id: reading.id,
     who: nameFor(access, people, reading.personId),
@@ -89,6 +89,7 @@ function readingOf(reading: VineReading, { access, people, ground }: { access: A
     unit: reading.unit,
     rowLabel,
     vine: vineNumber,
+    ...(place ? { place } : {}),
     seenAs: isRenamed ? reading.seenAs : null,
     isReserve: flags.includes('reserve'),
     note: reading.note,

@@ -1,16 +1,18 @@
 import { useI18n } from 'vue-i18n';
 import type { BagLine } from '../../../shared/contracts/bags.ts';
 import { useFormat } from '../../composables/useFormat.ts';
+import { useVineName } from '../../composables/useVineName.ts';
 
 /** What is said of a bag: where it comes from, who closed it or held it last, what its fruit was like. */
 export function useBagWords() {
   const { t } = useI18n();
   const format = useFormat();
+  const vineName = useVineName();
 
   function from(bag: BagLine): string {
     if (bag.blockName === null) return t('lab.unknownOrigin');
     const zone = bag.zone === null ? bag.blockName : t('lab.blockZone', { block: bag.blockName, zone: bag.zone });
-    return bag.rowLabel === null ? zone : t('lab.atVine', { place: zone, row: bag.rowLabel, vine: bag.vineNumber ?? '–' });
+    return bag.rowLabel === null || bag.vineNumber === null ? zone : t('lab.atVine', { place: zone, vine: vineName({ rowLabel: bag.rowLabel, vineNumber: bag.vineNumber, place: bag.vinePlace }, 'within') });
   }
 
   function closed(bag: BagLine): string {

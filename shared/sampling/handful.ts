@@ -44,10 +44,12 @@ export interface HandfulQuestion {
   readonly confidence: number;
   /** Walking to a vine and setting up there. */
   readonly secondsPerVine: number;
+  /** Vines that the plan does not go below. */
+  readonly minimumVines?: number;
 }
 
 /** Clusters a vine and berries a cluster at which a margin costs least time; the normal formula, because only the split is wanted. */
-export function adviseHandful({ spread, handful, margin, confidence, secondsPerVine }: HandfulQuestion): StageSplit {
+export function adviseHandful({ spread, handful, margin, confidence, secondsPerVine, minimumVines }: HandfulQuestion): StageSplit {
   const withBerries = handful.perCluster !== null && handful.withinCluster > 0;
   return bestSplit({
     variances: { betweenVines: betweenVines(spread, handful), withinVine: handful.withinVine ** 2, ...(withBerries ? { withinCluster: handful.withinCluster ** 2 } : {}) },
@@ -55,5 +57,6 @@ export function adviseHandful({ spread, handful, margin, confidence, secondsPerV
     target: { variance: (margin / criticalZ(confidence)) ** 2 },
     maximumPerVine: 30,
     maximumPerCluster: 200,
+    ...(minimumVines === undefined ? {} : { minimumVines }),
   });
 }

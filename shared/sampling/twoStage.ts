@@ -75,28 +75,37 @@ export interface SplitQuestion {
   /** Clusters and berries there are to take. */
   readonly maximumPerVine?: number;
   readonly maximumPerCluster?: number;
+  /** Vines it does not go below: two. */
+  readonly minimumVines?: number;
 }
 
 /** Share by which a larger handful must be better to be preferred: the optimum is flat, and fewer per vine is easier. */
 const WORTH_IT = 0.01;
 
+/** Tried where nothing is said of how many there are: more of a vine is no sample but its harvest. */
+const MOST_CLUSTERS = 60;
+const MOST_BERRIES = 300;
+
 /**
- * Whole numbers near the optimum: least cost for a variance, or least variance for a budget; among near-equals the
- * fewest clusters per vine, then the fewest berries. One cluster a vine when the formula says fewer than 1.5.
+ * Least cost for a variance, or least variance for a budget, over all whole numbers of clusters and berries; of those within
+ * a hundredth of it the fewest clusters, then the fewest berries. Cochran's numbers (`best`) hold for fractions only: where
+ * they ask for less than one cluster of a vine, one is taken, and then other numbers of berries are best.
  */
 export function bestSplit(question: SplitQuestion): StageSplit {
-  const { variances, costs, target } = question;
+  const { variances, costs, target, maximumPerVine = MOST_CLUSTERS, maximumPerCluster = MOST_BERRIES } = question;
   checkStages(question);
   const threeStages = (variances.withinCluster ?? 0) > 0 && (costs.perBerry ?? 0) > 0;
   const perVineBest = bestPerVine(Math.sqrt(variances.withinVine / variances.betweenVines), costs);
-  const perClusterBest = threeStages ? bestPerCluster(variances, costs) : null;
-  const best = { perVine: perVineBest, perCluster: perClusterBest };
-  const perVineChoices = perVineBest < 1.5 ? [1] : wholeAround(perVineBest, question.maximumPerVine ?? Infinity);
-  const perClusterChoices = perClusterBest === null ? [1] : wholeAround(perClusterBest, question.maximumPerCluster ?? Infinity);
-  const options = perVineChoices.flatMap((perVine) => perClusterChoices.flatMap((perCluster) => complete({ perVine, perCluster }, question, best)));
-  if (options.length === 0) throw new AnalysisError('budget_too_small', `A budget of ${'budget' in target ? target.budget : ''} does not pay for two vines. Allow at least ${2 * (costs.perVine + costs.perCluster)}.`);
+  const best = { perVine: perVineBest, perCluster: threeStages ? bestPerCluster(variances, costs) : null };
+  const options = upTo(maximumPerVine).flatMap((perVine) => upTo(threeStages ? maximumPerCluster : 1).flatMap((perCluster) => complete({ perVine, perCluster }, question, best)));
+  if (options.length === 0) throw new AnalysisError('budget_too_small', `A budget of ${'budget' in target ? target.budget : ''} does not pay for two vines. Allow at least ${stageCost(costs, { vines: 2, perVine: 1 })}.`);
   const judged = (split: StageSplit) => ('budget' in target ? split.variance : split.cost);
-  return options.reduce((kept, next) => (judged(next) < judged(kept) * (1 - WORTH_IT) ? next : kept));
+  const least = options.reduce((kept, split) => Math.min(kept, judged(split)), Infinity);
+  return options.find((split) => judged(split) <= least * (1 + WORTH_IT))!;
+}
+
+function upTo(most: number): number[] {
+  return Array.from({ length: Math.max(1, most) }, (_, i) => i + 1);
 }
 
 function checkStages({ variances, costs }: SplitQuestion): void {
@@ -105,17 +114,10 @@ function checkStages({ variances, costs }: SplitQuestion): void {
   if (!(costs.perVine > 0 && costs.perCluster > 0)) throw new AnalysisError('bad_cost', 'The time per vine and per cluster must both be above 0.');
 }
 
-/** Whole numbers from the one below to the one above, within what there is. */
-function wholeAround(x: number, maximum: number): number[] {
-  const low = Math.max(1, Math.floor(x));
-  const candidates = [low - 1, low, low + 1].filter((n) => n >= 1 && n <= maximum);
-  return candidates.length > 0 ? candidates : [Math.max(1, maximum)];
-}
-
-function complete(counts: { perVine: number; perCluster: number }, { variances, costs, target }: SplitQuestion, best: StageSplit['best']): StageSplit[] {
+function complete(counts: { perVine: number; perCluster: number }, { variances, costs, target, minimumVines = 2 }: SplitQuestion, best: StageSplit['best']): StageSplit[] {
   const one = { vines: 1, ...counts };
-  const vines = 'budget' in target ? Math.floor(target.budget / stageCost(costs, one) + 1e-9) : Math.max(2, ceilGuarded(stageVariance(variances, one) / target.variance));
-  if (vines < 2) return [];
+  const vines = 'budget' in target ? Math.floor(target.budget / stageCost(costs, one) + 1e-9) : Math.max(minimumVines, ceilGuarded(stageVariance(variances, one) / target.variance));
+  if (vines < minimumVines) return [];
   const split = { ...counts, vines };
   return [{ ...split, variance: stageVariance(variances, split), cost: stageCost(costs, split), best }];
 }

@@ -89,9 +89,25 @@ describe('vines, clusters and berries', () => {
     for (let perVine = 1; perVine <= 8; perVine++)
       for (let perCluster = 1; perCluster <= 20; perCluster++) {
         const vines = Math.ceil(stageVariance(variances, { vines: 1, perVine, perCluster }) / 0.05);
-        expect(split.cost).toBeLessThanOrEqual(stageCost(costs, { vines, perVine, perCluster }) * 1.03);
+        expect(split.cost).toBeLessThanOrEqual(stageCost(costs, { vines, perVine, perCluster }) * 1.01);
       }
     expect(split.variance).toBeLessThanOrEqual(0.05);
+  });
+
+  it('takes few berries of one cluster where the clusters of a vine hardly differ', () => {
+    // √(c_cluster S_e² / (c_berry S_w²)) = 20 berries go with 0.1 clusters. Of one whole cluster, C V = (c_vine + c_cluster + k c_berry)
+    // (S_b² + S_w² + S_e² / k) is least at k = √((c_vine + c_cluster) S_e² / (c_berry (S_b² + S_w²))) = 2.81.
+    const alike = { betweenVines: 1, withinVine: 0.01, withinCluster: 0.4 };
+    const split = bestSplit({ variances: alike, costs: { perVine: 40, perCluster: 40, perBerry: 4 }, target: { variance: 0.0101 }, maximumPerVine: 30, maximumPerCluster: 200 });
+    expectRelative(bestPerCluster(alike, { perVine: 40, perCluster: 40, perBerry: 4 }), 20);
+    expect(split.perVine).toBe(1);
+    expect(split.perCluster).toBeGreaterThanOrEqual(2);
+    expect(split.perCluster).toBeLessThanOrEqual(4);
+  });
+
+  it('does not go below the vines that a plan takes in any case', () => {
+    const split = bestSplit({ variances, costs, target: { variance: 5 }, minimumVines: 5 });
+    expect(split).toMatchObject({ vines: 5, perVine: 1, perCluster: 1 });
   });
 
   it('takes no more clusters than a vine carries', () => {

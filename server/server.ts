@@ -26,7 +26,7 @@ async function main(): Promise<void> {
   openComputePool(config.computeThreads);
   const jobs = startJobProcess();
   const mail = makeTransport({ smtpUrl: config.smtpUrl, from: config.mailFrom });
-  const mailTimer = setInterval(() => void mail.flush().catch((error: unknown) => log.error('mail', error)), mailEveryMs);
+  const mailTimer = setInterval(() => void mail.flush(new Date()).catch((error: unknown) => log.error('mail', error)), mailEveryMs);
   const sweep = () => void dropForgotten(new Date()).catch((error: unknown) => log.error('unfinished uploads', error));
   sweep();
   const sweepTimer = setInterval(sweep, sweepEveryMs);

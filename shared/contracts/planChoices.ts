@@ -32,6 +32,8 @@ export const plannedMeasure = z.object({
   moneyPerSample: z.number().min(0).max(10_000).optional(),
   /** Spreads typed by hand in place of those found, by zone number, in the measure's own form (unit, or share of the mean). */
   spreads: z.record(z.string(), z.number().positive().max(10_000)).optional(),
+  /** Means expected, typed by hand in place of those found, by zone number, in the unit: between shares of the mean and the unit they decide. */
+  means: z.record(z.string(), z.number().min(-1_000_000).max(1_000_000)).optional(),
   handful: handful.optional(),
 });
 export type PlannedMeasureChoice = z.infer<typeof plannedMeasure>;

@@ -105,7 +105,7 @@ function measureOf(basis: PlanBasis, { isCautious, afterPilot, isPilot, populati
     margin: marginOf(known, choice),
     confidence: choice.confidence ?? known.confidence,
     spreads,
-    expectedMeans: known.spreads.map(({ expectedMean }) => expectedMean),
+    expectedMeans: known.spreads.map(({ expectedMean }, i) => choice.means?.[String(basis.zones[i]!.number)] ?? expectedMean),
     // A typed spread is not the pilot's, so its rule does not hold for it.
     pilots: pilots.map((pilot, i) => (choice.spreads?.[String(basis.zones[i]!.number)] === undefined ? pilot : null)),
     ...finiteSharesOf(spreads, { population, handful: choice.handful }),

@@ -27,13 +27,14 @@ export function partPool(pools: Pools, zone: number): number[][] {
   return pools.filter((pool) => !pool.includes(zone)).map((pool) => [...pool]);
 }
 
-/** Choices with other pools: a spread typed for a zone is not that of its pool, nor the other way round. */
+/** Choices with other pools: a spread or a mean typed for a zone is not that of its pool, nor the other way round. */
 function withPools(choices: PlanChoices, pools: number[][], touched: readonly number[]): PlanChoices {
-  const forget = (choice: PlannedMeasureChoice): PlannedMeasureChoice => {
-    const kept = Object.entries(choice.spreads ?? {}).filter(([zone]) => !touched.includes(Number(zone)));
-    return { ...choice, spreads: kept.length > 0 ? Object.fromEntries(kept) : undefined };
+  const forget = (typed: Record<string, number>) => {
+    const kept = Object.entries(typed).filter(([zone]) => !touched.includes(Number(zone)));
+    return kept.length > 0 ? Object.fromEntries(kept) : undefined;
   };
-  return { ...choices, pools, measures: choices.measures.map((choice) => (choice.spreads ? forget(choice) : choice)) };
+  const forgetIn = (choice: PlannedMeasureChoice): PlannedMeasureChoice => ({ ...choice, ...(choice.spreads ? { spreads: forget(choice.spreads) } : {}), ...(choice.means ? { means: forget(choice.means) } : {}) });
+  return { ...choices, pools, measures: choices.measures.map(forgetIn) };
 }
 
 /** The choices with two zones, or pools of zones, sampled as one. */

@@ -7,8 +7,8 @@ import type { ImpracticalOption } from '../../shared/sampling/impractical.ts';
 export interface PlanEdits {
   toggle: (code: string) => void;
   adjust: (code: string, facts: Partial<PlannedMeasureChoice>) => void;
-  /** Null goes back to the spread that was found. */
-  setSpread: (code: string, zone: number, spread: number | null) => void;
+  /** Null goes back to the spread, or the mean, that was found. */
+  setTyped: (what: 'spreads' | 'means', code: string, zone: number, value: number | null) => void;
   /** Seconds more at each vine of a zone; 0 or null for none. */
   setZoneSeconds: (zone: number, seconds: number | null) => void;
   /** All margins by one factor, so that they keep the proportions that were asked for. */
@@ -32,11 +32,11 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     const rest = choices.value.measures.filter((choice) => choice.code !== code);
     set({ measures: rest.length === choices.value.measures.length ? [...rest, { code }] : rest });
   }
-  function setSpread(code: string, zone: number, spread: number | null): void {
-    const typed = { ...choices.value.measures.find((choice) => choice.code === code)?.spreads };
-    if (spread === null) delete typed[String(zone)];
-    else typed[String(zone)] = spread;
-    adjust(code, { spreads: Object.keys(typed).length > 0 ? typed : undefined });
+  function setTyped(what: 'spreads' | 'means', code: string, zone: number, value: number | null): void {
+    const typed = { ...choices.value.measures.find((choice) => choice.code === code)?.[what] };
+    if (value === null) delete typed[String(zone)];
+    else typed[String(zone)] = value;
+    adjust(code, { [what]: Object.keys(typed).length > 0 ? typed : undefined });
   }
   function setZoneSeconds(zone: number, seconds: number | null): void {
     const rest = Object.fromEntries(Object.entries(choices.value.zoneSeconds).filter(([number]) => number !== String(zone)));
@@ -50,5 +50,5 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
     if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));
     if (option.kind === 'poolZones') pool(Number(option.zones[0]), Number(option.zones[1]));
   }
-  return { toggle, adjust, setSpread, setZoneSeconds, scaleMargins, takeAdvice, pool, part, set };
+  return { toggle, adjust, setTyped, setZoneSeconds, scaleMargins, takeAdvice, pool, part, set };
 }

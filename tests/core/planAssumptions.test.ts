@@ -63,6 +63,17 @@ describe('assumptions that a planner changes', () => {
     expect(typed[1]).toBeGreaterThan(two!);
   });
 
+  it('a typed mean turns a share of the mean into the unit, in its zone and no other', () => {
+    const share = { margin: 0.02, marginKind: 'relative' };
+    // 2 % of 22 is 0.44 °Brix, of 11 it is 0.22.
+    expect(visits(basis(), choices(share))).toEqual(visits(basis(), choices({ margin: 0.44 })));
+    const typed = choices({ ...share, means: { 2: 11 } });
+    expect(visits(basis(), typed)).toEqual([0.44, 0.22, 0.44].map((margin, i) => visits(basis(), choices({ margin }))[i]));
+    expect(zoneMaths(answerPlan(basis(), typed).question, 'brix')[1]!.conversion).toEqual({ of: 'margin', share: 0.02, mean: 11 });
+    // Where margin and spread are both in the unit no count rests on the mean.
+    expect(visits(basis(), choices({ means: { 2: 11 } }))).toEqual(visits(basis()));
+  });
+
   it('both directions agree: the hours, vines or money of a plan buy its margins', () => {
     const plan = answerPlan(basis(), choices());
     for (const [kind, value] of [['hours', plan.counts.hours], ['vines', plan.counts.visits], ['money', plan.counts.money]] as const) {

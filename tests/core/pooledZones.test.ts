@@ -3,7 +3,7 @@ import type { BasisSpread, PlanBasis } from '../../shared/contracts/planBasis.ts
 import { planChoices } from '../../shared/contracts/planChoices.ts';
 import { mergedFigures } from '../../shared/sampling/mergedZones.ts';
 import { answerPlan, questionOf } from '../../shared/sampling/plan.ts';
-import { headOf, joinPools, membersOf, partPool, pooledBasis } from '../../shared/sampling/pooledZones.ts';
+import { choicesJoined, headOf, joinPools, membersOf, partPool, pooledBasis } from '../../shared/sampling/pooledZones.ts';
 
 function spread(value: number, over: Partial<BasisSpread> = {}): BasisSpread {
   return { kind: 'sd', value, cautious: value * 1.2, source: 'zone', n: 12, seasons: [2025], df: 11, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: 22, isMeanAssumed: false, ...over };
@@ -94,6 +94,11 @@ describe('a plan with pooled zones', () => {
     expect(taken.counts.visits).toBe(option.visits);
     expect(taken.counts.hours).toBeCloseTo(option.hours, 9);
     expect(taken.counts.visits).toBeLessThan(answerPlan(basis(spreads), choices()).counts.visits);
+  });
+
+  it('forgets what was typed for the zones that are joined, and keeps the rest', () => {
+    const typed = choices({ measures: [{ code: 'brix', spreads: { 1: 1.4, 2: 2 }, means: { 1: 21, 3: 19 } }] });
+    expect(choicesJoined(typed, 2, 3).measures).toEqual([{ code: 'brix', spreads: { 1: 1.4 }, means: { 1: 21 } }]);
   });
 
   it('keeps the margin for the zones together, and takes a typed spread for the pool', () => {

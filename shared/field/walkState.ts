@@ -22,6 +22,9 @@ export interface StopVine {
   readonly isReserve: boolean;
 }
 
+/** What of a round tells which vines are still to be read. */
+type WalkRound = Pick<FieldRound, 'measures' | 'received' | 'readAsks'>;
+
 /** Measures read at a stop: those of the field; where all are for the lab, they are read here if somebody types them. */
 export function askedAt(round: Pick<FieldRound, 'measures'>, stop: WalkStop): FieldMeasure[] {
   const here = round.measures.filter(({ code }) => stop.measures.includes(code));
@@ -38,22 +41,31 @@ export function vineAt(stop: WalkStop, entries: readonly WalkEntry[]): StopVine 
   return { ...stop.reserve, isReserve: true };
 }
 
-/** Measures that are still to be read at a stop. */
-export function openAt(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): FieldMeasure[] {
+/** Measures that are still to be read at a stop: neither here nor, as far as the phone was told, by anybody else of the round. */
+export function openAt(round: WalkRound, stop: WalkStop, entries: readonly WalkEntry[]): FieldMeasure[] {
   if (vineAt(stop, entries) === null) return [];
   const isPicked = entries.some((entry) => entry.kind === 'pick' && entry.targetId === stop.targetId);
   const isRead = (code: string) =>
     entries.some((entry) => entry.kind === 'reading' && entry.targetId === stop.targetId && entry.measureCode === code) ||
-    round.received.some((reading) => reading.targetId === stop.targetId && reading.measureCode === code);
+    isReceived(round, stop, code);
   return askedAt(round, stop).filter(({ code, measuredIn }) => !isRead(code) && !(isPicked && measuredIn === 'lab'));
 }
 
-export function isStopDone(round: Pick<FieldRound, 'measures' | 'received'>, stop: WalkStop, entries: readonly WalkEntry[]): boolean {
+function isReceived({ received, readAsks = [] }: WalkRound, { targetId }: WalkStop, code: string): boolean {
+  return [...received, ...readAsks].some((reading) => reading.targetId === targetId && reading.measureCode === code);
+}
+
+/** Whether all at a stop was read by others: whoever walks here has not stood there. */
+export function isOthersStop(round: Pick<FieldRound, 'received' | 'readAsks'>, { targetId }: WalkStop, entries: readonly WalkEntry[]): boolean {
+  return (round.readAsks ?? []).some((ask) => ask.targetId === targetId) && !round.received.some((reading) => reading.targetId === targetId) && !entries.some((entry) => entry.targetId === targetId);
+}
+
+export function isStopDone(round: WalkRound, stop: WalkStop, entries: readonly WalkEntry[]): boolean {
   return openAt(round, stop, entries).length === 0;
 }
 
 /** The next stop after `from` (index) that is open, going round to those passed over; null when the walk is done. */
-export function nextOpenStop(round: Pick<FieldRound, 'measures' | 'received' | 'stops'>, entries: readonly WalkEntry[], from = 0): number | null {
+export function nextOpenStop(round: WalkRound & Pick<FieldRound, 'stops'>, entries: readonly WalkEntry[], from = 0): number | null {
   const count = round.stops.length;
   for (let step = 0; step < count; step++) {
     const index = (from + step) % count;

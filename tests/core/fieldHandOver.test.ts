@@ -2,7 +2,8 @@ import { describe, expect, it } from 'vitest';
 import type { FieldMeasure, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { vinesForBag } from '../../shared/field/bagVines.ts';
 import { takenWalk } from '../../shared/field/takenWalk.ts';
-import { isStopDone, vineAt, type WalkEntry } from '../../shared/field/walkState.ts';
+import { isOthersStop, isStopDone, nextOpenStop, vineAt, type WalkEntry } from '../../shared/field/walkState.ts';
+import { wayTo } from '../../shared/field/wayTo.ts';
 
 const stop = (number: number, over: Partial<WalkStop> = {}): WalkStop => ({
   targetId: `t${number}`, number, rowId: 'row', rowLabel: '4', rowLabelWas: null, ordinal: number * 10, vineNumber: number * 10, zone: 1, drawOrder: number, enterBy: 'start', heading: 'toEnd',
@@ -59,5 +60,37 @@ describe('the vines of a bag', () => {
     expect(isStopDone(lab, stop(1), [])).toBe(false);
     expect(isStopDone(lab, stop(1), [pick(1)])).toBe(true);
     expect(isStopDone({ measures: [brix, count], received: [] }, stop(1, { measures: ['brix', 'clusterCount'] }), [pick(1)])).toBe(false);
+  });
+});
+
+describe('the way to a vine', () => {
+  const rows = [{ id: 'row', firstOrdinal: 1, vineCount: 100 }];
+  const on = (over: Partial<WalkStop> = {}) => stop(3, { aheadFrom: 'lastVine', ahead: 12, ...over });
+  const at = (rowId: string) => ({ rowId, rowLabel: '', ordinal: 18, vineNumber: 18, isReserve: false });
+
+  it('goes on from the vine before, in its row or across the alley', () => {
+    expect(wayTo(rows, on(), at('row'))).toEqual({ from: 'vineInRow', fromStart: true, ahead: 12 });
+    expect(wayTo(rows, on(), at('next'))).toEqual({ from: 'vineAcross', fromStart: true, ahead: 12 });
+    expect(wayTo(rows, stop(3, { ahead: 30 }), at('next'))).toEqual({ from: 'post', fromStart: true, ahead: 30 });
+  });
+
+  it('begins at the post for who has not stood at the vine before, counted from that post', () => {
+    expect(wayTo(rows, on(), null)).toEqual({ from: 'post', fromStart: true, ahead: 30 });
+    expect(wayTo(rows, on({ enterBy: 'end', heading: 'toStart' }), null)).toEqual({ from: 'post', fromStart: false, ahead: 71 });
+  });
+});
+
+describe('a walk of which somebody else has read a part', () => {
+  const mine = { measures: [count], received: [], readAsks: [{ targetId: 't1', measureCode: 'clusterCount' }, { targetId: 't2', measureCode: 'clusterCount' }] };
+  const stops = [1, 2, 3].map((number) => stop(number, { measures: ['clusterCount'] }));
+  const own: WalkEntry = { id: 'e', kind: 'reading', targetId: 't1', measureCode: 'clusterCount', rowId: 'row', ordinal: 10, at: '' };
+
+  it('asks for the rest, and knows where one has not stood oneself', () => {
+    expect(nextOpenStop({ ...mine, stops }, [own])).toBe(2);
+    expect(stops.map((one) => isOthersStop(mine, one, [own]))).toEqual([false, true, false]);
+  });
+
+  it('asks for all of its own where the phone was told nothing', () => {
+    expect(nextOpenStop({ ...mine, readAsks: undefined, stops }, [own])).toBe(1);
   });
 });

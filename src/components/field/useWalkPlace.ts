@@ -1,7 +1,7 @@
 import { computed, type ComputedRef, type Ref } from 'vue';
 import type { FieldMeasure, FieldRound, WalkStop } from '../../../shared/contracts/rounds.ts';
 import { standingOf, type ZoneStanding } from '../../../shared/field/enoughHere.ts';
-import { isStopDone, nextOpenStop, openAt, vineAt, type StopVine } from '../../../shared/field/walkState.ts';
+import { isOthersStop, isStopDone, nextOpenStop, openAt, vineAt, type StopVine } from '../../../shared/field/walkState.ts';
 import type { Entry } from '../../offline/fieldDatabase.ts';
 import { walkEntries } from './walkEntries.ts';
 
@@ -31,7 +31,7 @@ export function useWalkPlace(round: Ref<FieldRound | null>, entries: () => reado
   });
   const previous = computed(() => {
     const before = round.value && stop.value ? round.value.stops[round.value.stops.indexOf(stop.value) - 1] : undefined;
-    return before ? vineAt(before, typed.value) : null;
+    return before && !isOthersStop(round.value!, before, typed.value) ? vineAt(before, typed.value) : null;
   });
   const vine = computed(() => (stop.value ? vineAt(stop.value, typed.value) : null));
   const measure = computed(() => {

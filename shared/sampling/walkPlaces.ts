@@ -4,15 +4,11 @@ import type { Alley, AlleyLayout, WalkPlace } from './walkLayout.ts';
 
 /**
  * Where a gate joins the walk: the nearest point of the headlands or of the outermost alleys, and a path of its own from
- * there when the gate lies off them.
+ * there when the gate lies off them. A start among the rows, where somebody stands, lies in its alley: rows are walls to it too.
  */
 export function placeOfGate(layout: AlleyLayout, frame: RowFrame, gateXY: XY): WalkPlace {
   const gate = toAlongAcross(frame, gateXY);
-  let best: Candidate | null = null;
-  for (const candidate of candidatesFor(layout, gate)) {
-    if (best === null || candidate.distanceM < best.distanceM) best = candidate;
-  }
-  if (best === null) throw new Error('a layout has at least one alley');
+  const best = amongRows(layout, gate) ?? nearestOutside(layout, gate);
   return best.distanceM < LEAST_SPUR_M ? best.place : { ...best.place, spur: { lengthM: best.distanceM, ...gate } };
 }
 
@@ -22,6 +18,27 @@ const LEAST_SPUR_M = 1e-6;
 interface Candidate {
   readonly place: WalkPlace;
   readonly distanceM: number;
+}
+
+/** The place in the alley in which somebody stands, or at the nearer end of the break in it; null outside the rows and where the alley is shut. */
+function amongRows({ alleys }: AlleyLayout, { s, t }: AlongAcross): Candidate | null {
+  if (s < alleys[0]!.s || s > alleys.at(-1)!.s) return null;
+  const alley = alleys.reduce((best, { s: other }, j) => (Math.abs(other - s) < Math.abs(alleys[best]!.s - s) ? j : best), 0);
+  const { s: middle, bottomT, topT, breaks = [] } = alleys[alley]!;
+  if (t <= bottomT || t >= topT) return null;
+  const ends = breaks.find(([from, to]) => from < t && t < to) ?? [t, t];
+  const nearer = t - ends[0] <= ends[1] - t ? ends[0] : ends[1];
+  if (ends[0] <= bottomT && ends[1] >= topT) return null;
+  return { place: { at: 'alley', alley, t: nearer }, distanceM: Math.hypot(s - middle, t - nearer) };
+}
+
+function nearestOutside(layout: AlleyLayout, gate: AlongAcross): Candidate {
+  let best: Candidate | null = null;
+  for (const candidate of candidatesFor(layout, gate)) {
+    if (best === null || candidate.distanceM < best.distanceM) best = candidate;
+  }
+  if (best === null) throw new Error('a layout has at least one alley');
+  return best;
 }
 
 function* candidatesFor(layout: AlleyLayout, gate: AlongAcross): Generator<Candidate> {

@@ -82,6 +82,18 @@ describe('a walk in a block', () => {
     expect(far.walk.lengthM).toBeCloseTo(walk.lengthM + 5, 9);
   });
 
+  it('a start among the rows lies in its alley, and the way out of it crosses no row', () => {
+    const rows = lay(rectangle, 0);
+    const { layout } = alleysOfRows(rows);
+    expect(placeOfGate(layout, rows.frame, [50.4, 31])).toMatchObject({ at: 'alley', alley: 20, t: expect.closeTo(31, 9), spur: { lengthM: expect.closeTo(0.4, 9) } });
+    const { pathXY } = walkBlock({ rows, vines: [{ rowIndex: 2, ordinal: 5 }, { rowIndex: 30, ordinal: 9 }], gateXY: [50.4, 31], ground: level });
+    expect(cutsRow(pathXY, rows)).toBe(false);
+    // In the mouth of a notch one stands on open ground: the walk goes on at the nearer row ends.
+    const open = lay(notched, 90, 3);
+    const { layout: mouth } = alleysOfRows(open);
+    expect(placeOfGate(mouth, open.frame, [45, 60])).toMatchObject({ at: 'alley', spur: { lengthM: expect.closeTo(8, 0) } });
+  });
+
   it('a gate off the headland, beside the block or on it is joined at the nearest point', () => {
     const { layout } = alleysOfRows(rows);
     expect(placeOfGate(layout, rows.frame, [30, 4])).toEqual({ at: 'end', alley: 12, end: 'bottom' });

@@ -37,7 +37,7 @@ export async function estateGuard(request: Request, _response: Response, next: N
 }
 
 /** Roles in force today: begun, not ended, not past their last day. */
-export async function openRoles(estateId: string, personId: string): Promise<Role[]> {
+async function openRoles(estateId: string, personId: string): Promise<Role[]> {
   const rows = await Membership.query()
     .where({ estateId, personId })
     .whereNull('endedAt')

@@ -147,7 +147,7 @@ export function soilMap(ground: Ground): DemoFile {
   return { name: 'soil-survey.geojson', bytes: Buffer.from(JSON.stringify({ type: 'FeatureCollection', features })) };
 }
 
-export function insideRing(ring: readonly (readonly [number, number])[], x: number, y: number): boolean {
+function insideRing(ring: readonly (readonly [number, number])[], x: number, y: number): boolean {
   let inside = false;
   for (let i = 0, j = ring.length - 1; i < ring.length; j = i++) {
     const [xi, yi] = ring[i]!;

@@ -23,7 +23,7 @@ export interface ImportFormat {
 }
 
 /** Formats that are read. A new one is a reader and its row. */
-export const importFormats: readonly ImportFormat[] = [
+const importFormats: readonly ImportFormat[] = [
   { id: 'geotiff', contents: ['geotiff'], endings: ['tif', 'tiff'], kind: 'raster', read: async (input, options) => (await inspectRaster(input, options)).understood, readAgain: describeRaster },
   { id: 'shapefile', contents: ['zip'], endings: ['zip', 'kmz'], kind: 'vector', read: readVectors },
   { id: 'geopackage', contents: ['geopackage'], endings: ['gpkg'], kind: 'vector', read: readVectors },

@@ -17,7 +17,7 @@ export interface FileStore {
 }
 
 /** Originals in a folder: two letters of the hash make the sub-folder. */
-export function folderStore(folder: string): FileStore {
+function folderStore(folder: string): FileStore {
   const incomingFolder = join(folder, 'incoming');
   const pathOf = (sha256: string) => {
     if (!/^[0-9a-f]{64}$/.test(sha256)) throw new Error(`"${sha256}" is no SHA-256`);

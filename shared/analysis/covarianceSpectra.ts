@@ -45,7 +45,7 @@ function evenCrossSums(plane: MaskedPlane, layers: readonly Float64Array[], { a,
 }
 
 /** Signed spectrum of a covariance tapered to zero at the width of the block, √cells. */
-export function spectrumOf({ transform, products, pairs }: LagSums): Float64Array {
+function spectrumOf({ transform, products, pairs }: LagSums): Float64Array {
   const { width, height } = transform;
   const cellCount = pairs[0]!;
   const reach = Math.sqrt(cellCount);

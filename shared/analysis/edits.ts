@@ -38,7 +38,7 @@ export type ZoneEdit =
   | { readonly kind: 'replace'; readonly runs: readonly number[]; readonly reason: 'snapped' | 'restored' }
   | { readonly kind: 'clean'; readonly minPatchHa: number; readonly narrowestM?: number };
 
-export const MAX_ZONE_NUMBER = 60;
+const MAX_ZONE_NUMBER = 60;
 
 /** Zones without names from labels. Throws AnalysisError unless exactly the cells inside carry a label. */
 export function zoneMapOf(grid: Grid, labels: Labels): ZoneMap {

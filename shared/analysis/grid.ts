@@ -35,7 +35,7 @@ export type Cells = Float32Array;
 /** One zone number per cell: 1 … 255 inside the block, 0 outside. */
 export type Labels = Uint8Array;
 
-export const MAX_CELLS = 16_000_000;
+const MAX_CELLS = 16_000_000;
 
 /**
  * The grid of a block. The UTM zone is the one of the outline's centroid.
@@ -104,13 +104,6 @@ export function toCellRing(ring: readonly XY[], frame: GridFrame): CellRing {
   return out;
 }
 
-/** Refuses to mix cells of two grids, for example after an outline was changed. */
-export function assertSameGrid(expected: Grid, key: string, what: string): void {
-  if (expected.key !== key) {
-    throw new AnalysisError('grid-mismatch', `${what} was made for another outline or cell size of this block; import it again.`);
-  }
-}
-
 /** Refuses an array that has not one value per cell. */
 export function assertCellCount(grid: Grid, cells: ArrayLike<number>, what: string): void {
   const wanted = grid.cols * grid.rows;
@@ -128,14 +121,6 @@ export function cellAt(grid: GridFrame, xy: XY): number {
 export function cellCentre(grid: GridFrame, cell: number): XY {
   const row = Math.floor(cell / grid.cols);
   return [grid.x0 + (cell - row * grid.cols + 0.5) * grid.cellSizeM, grid.y0 - (row + 0.5) * grid.cellSizeM];
-}
-
-/** Indexes of the cells inside the block, ascending. */
-export function insideCells(grid: Grid): Int32Array {
-  const cells = new Int32Array(grid.inside.length);
-  let count = 0;
-  for (let cell = 0; cell < grid.inside.length; cell++) if (grid.inside[cell] === 1) cells[count++] = cell;
-  return cells.slice(0, count);
 }
 
 /** The values of a layer inside the block, without the missing ones, in the order of the cells; a new array. */

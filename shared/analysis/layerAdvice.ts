@@ -97,7 +97,7 @@ function adviseEvidence(layer: AdvisableLayer, evidence: readonly AdvisableLayer
 }
 
 /** Correlation over the cells that both layers have; 0 when one of them is constant there. */
-export function correlationOfCells(first: Cells, second: Cells): number {
+function correlationOfCells(first: Cells, second: Cells): number {
   const inFirst = new Float64Array(first.length);
   const inSecond = new Float64Array(first.length);
   let count = 0;

@@ -9,13 +9,13 @@
 import { averageRanks } from './agreement.ts';
 import type { Cells, Labels } from './grid.ts';
 
-export const CHANCE_SHIFT = 1 / 3;
+const CHANCE_SHIFT = 1 / 3;
 /** Half of what chance does. */
 const STEADY_BELOW = CHANCE_SHIFT / 2;
 const LEAST_CELLS = 30;
 
 /** Labels of `ground`. */
-export const steadiness = { steady: 1, moving: 2, chance: 3 } as const;
+const steadiness = { steady: 1, moving: 2, chance: 3 } as const;
 
 export interface RankStability {
   readonly cells: number;

@@ -95,7 +95,7 @@ export function cellsToPixels(grid: GridFrame, frame: RasterFrame): PlaneMap {
 }
 
 /** One position: pixels to cells. */
-export function pointInCells(grid: GridFrame, { transform, toGrid }: RasterFrame): (u: number, v: number) => [number, number] {
+function pointInCells(grid: GridFrame, { transform, toGrid }: RasterFrame): (u: number, v: number) => [number, number] {
   const [t0, t1, t2, t3, t4, t5] = transform;
   return (u, v) => {
     const own: [number, number] = [t0 + u * t1 + v * t2, t3 + u * t4 + v * t5];
@@ -105,7 +105,7 @@ export function pointInCells(grid: GridFrame, { transform, toGrid }: RasterFrame
 }
 
 /** One position: cells to pixels. */
-export function pointInPixels(grid: GridFrame, { transform, toGrid }: RasterFrame): (u: number, v: number) => [number, number] {
+function pointInPixels(grid: GridFrame, { transform, toGrid }: RasterFrame): (u: number, v: number) => [number, number] {
   const [t0, t1, t2, t3, t4, t5] = transform;
   const determinant = t1 * t5 - t2 * t4;
   return (u, v) => {

@@ -10,7 +10,7 @@ export type Code = number | readonly Code[];
 export const I32 = 0x7f;
 export const F64 = 0x7c;
 /** Sixteen bytes that one instruction works on (WebAssembly Core Specification 2.0, "Vector Instructions"). */
-export const V128 = 0x7b;
+const V128 = 0x7b;
 export type ValueType = typeof I32 | typeof F64 | typeof V128;
 
 const EMPTY = 0x40;
@@ -25,8 +25,7 @@ const binary = (opcode: number) => (left: Code, right: Code): Code => [left, rig
 export const equal = binary(0x46);
 export const unequal = binary(0x47);
 export const both = binary(0x71);
-export const lessInt = binary(0x48);
-export const atLeastInt = binary(0x4e);
+const lessInt = binary(0x48);
 export const addInt = binary(0x6a);
 export const timesInt = binary(0x6c);
 export const less = binary(0x63);

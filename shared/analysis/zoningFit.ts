@@ -14,7 +14,7 @@ import { commonCells } from './verdictField.ts';
 import { MOST_ZONES } from './verdictGap.ts';
 
 /** Cells that the fit is made on. */
-export const FIT_CELLS = 10_000;
+const FIT_CELLS = 10_000;
 /** With more cells than the first the many starts run on a part of them. */
 const SEARCH_ALL_CELLS = 3000;
 const SEARCH_CELLS = 1000;

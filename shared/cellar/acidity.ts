@@ -5,7 +5,7 @@
 const TARTARIC_G_PER_MOL = 150.087;
 const SULPHURIC_G_PER_MOL = 98.079;
 
-export const acidityScales = [
+const acidityScales = [
   { id: 'tartaricGPerL', tartaricGPerL: 1 },
   { id: 'sulphuricGPerL', tartaricGPerL: TARTARIC_G_PER_MOL / SULPHURIC_G_PER_MOL },
   { id: 'meqPerL', tartaricGPerL: TARTARIC_G_PER_MOL / 2000 },

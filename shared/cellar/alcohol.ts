@@ -48,7 +48,7 @@ interface AlcoholMethod {
 /** Which figure of sugar per percent makes the alcohol low, middle or high. */
 const OPPOSITE = { low: 'high', middle: 'middle', high: 'low' } as const;
 
-export const alcoholMethods = [
+const alcoholMethods = [
   { id: 'measuredSugar', from: 'sugarGPerL', percent: (sugar, settings, which) => sugar / settings.sugarPerPercent[OPPOSITE[which]] },
   { id: 'sugarTable', from: 'brix', percent: (brix, settings, which) => sugarOfBrix(brix) / settings.sugarPerPercent[OPPOSITE[which]] },
   { id: 'solidsLessAllowance', from: 'brix', percent: (brix, settings, which) => Math.max(0, solidsGPerL(brix) - settings.otherSolidsGPerL) / settings.sugarPerPercent[OPPOSITE[which]] },

@@ -3,7 +3,7 @@
  * left cannot be told apart. Shares are by logarithms, so that they add up to the whole error exactly and no factor is
  * favoured by its place (additive log-mean Divisia index, Ang 2005, Energy Policy 33:867). Never about people.
  */
-export const ERROR_PARTS = ['vines', 'clusters', 'clusterWeight', 'growth', 'losses'] as const;
+const ERROR_PARTS = ['vines', 'clusters', 'clusterWeight', 'growth', 'losses'] as const;
 export type ErrorPart = (typeof ERROR_PARTS)[number];
 
 export interface ErrorQuestion {

@@ -176,7 +176,7 @@ export function litresOf(zones: readonly ChoiceZone[], { litresPerT }: Pick<Choi
  * How unlike the zones of a lot are: tonnes times squared distance from the lot's mean, in spreads inside the zones,
  * averaged over the measures that all of them have. 0 for one zone; null when several have no measure in common.
  */
-export function unlikeness(zones: readonly ChoiceZone[]): number | null {
+function unlikeness(zones: readonly ChoiceZone[]): number | null {
   if (zones.length === 1) return 0;
   const shared = COMPARED.filter((code) => zones.every(({ values }) => values[code] !== null));
   if (shared.length === 0) return null;
@@ -193,7 +193,7 @@ export function distanceFrom(zone: ChoiceZone, lot: readonly ChoiceZone[], share
 }
 
 /** Mean and pooled spread inside the zones, by tonnes; null while a zone was not read. */
-export function lotMean(zones: readonly ChoiceZone[], code: Compared): { readonly mean: number; readonly sd: number } | null {
+function lotMean(zones: readonly ChoiceZone[], code: Compared): { readonly mean: number; readonly sd: number } | null {
   const total = zones.reduce((sum, { tonnes }) => sum + tonnes.value, 0);
   let [mean, variance] = [0, 0];
   for (const { values, tonnes } of zones) {

@@ -24,8 +24,8 @@ export interface CrsDefinition {
 }
 
 /** The foot of 1959 and the US survey foot of 1893 (exact by definition). */
-export const FOOT_M = 0.3048;
-export const SURVEY_FOOT_M = 1200 / 3937;
+const FOOT_M = 0.3048;
+const SURVEY_FOOT_M = 1200 / 3937;
 
 const NAD83 = '+datum=NAD83';
 

@@ -27,7 +27,7 @@ export function numberingFromTap({ frame, rows }: RowsXY, tapXY: XY): NumberingC
 }
 
 /** t of a row's two outer ends. */
-export function rowEndsAlong(frame: RowFrame, row: RowXY): readonly [startT: number, endT: number] {
+function rowEndsAlong(frame: RowFrame, row: RowXY): readonly [startT: number, endT: number] {
   return [toAlongAcross(frame, row.pieces[0]!.fromXY).t, toAlongAcross(frame, row.pieces.at(-1)!.toXY).t];
 }
 

@@ -35,7 +35,7 @@ export class OutlineCrosses extends AnalysisError {
   }
 }
 
-export const outlineLimits = { leastHa: 0.01, mostHa: 1000, mostCorners: 20_000 } as const;
+const outlineLimits = { leastHa: 0.01, mostHa: 1000, mostCorners: 20_000 } as const;
 
 /**
  * A block's outline from GeoJSON: eight decimals, rings closed and wound, heights and repeated corners dropped, area on the

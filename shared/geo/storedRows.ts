@@ -36,7 +36,7 @@ export function rowsFromStored(facts: FrameFacts, stored: readonly StoredRow[]):
 }
 
 /** The row frame of a block: origin at the outline's first vertex, bearing turned from true to grid north at its middle. */
-export function blockRowFrame({ boundary, rowBearingDeg, epsg }: FrameFacts): RowFrame {
+function blockRowFrame({ boundary, rowBearingDeg, epsg }: FrameFacts): RowFrame {
   const ring = boundary[0]?.[0] ?? [];
   const convergence = convergenceDeg(ringMiddle(ring), epsg);
   return { originXY: toUtm(ring[0]!, epsg), gridBearingDeg: lineBearing(rowBearingDeg - convergence) };

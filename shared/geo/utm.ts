@@ -53,16 +53,6 @@ export function fromUtm(xy: XY, epsg: number): LonLat {
   return projectionOf(epsg).inverse([xy[0], xy[1]]);
 }
 
-/** Many positions at once: pairs lon, lat, lon, lat … in, pairs x, y, x, y … out. */
-export function toUtmPairs(lonLatPairs: Float64Array, epsg: number): Float64Array {
-  return mapPairs(lonLatPairs, projectionOf(epsg).forward);
-}
-
-/** Many positions at once: pairs x, y, x, y … in, pairs lon, lat, lon, lat … out. */
-export function fromUtmPairs(xyPairs: Float64Array, epsg: number): Float64Array {
-  return mapPairs(xyPairs, projectionOf(epsg).inverse);
-}
-
 export function polygonsToUtm(polygons: MultiPolygonLonLat, epsg: number): MultiPolygonXY {
   return polygons.map((rings) => rings.map((ring) => ring.map((lonLat) => toUtm(lonLat, epsg))));
 }
@@ -89,14 +79,4 @@ function projectionOf(epsg: number): Projection {
   const made = proj4(utmDefinition(epsg));
   projections.set(epsg, made);
   return made;
-}
-
-function mapPairs(pairs: Float64Array, map: Projection['forward']): Float64Array {
-  const out = new Float64Array(pairs.length);
-  for (let at = 0; at + 1 < pairs.length; at += 2) {
-    const [first, second] = map([pairs[at]!, pairs[at + 1]!]);
-    out[at] = first;
-    out[at + 1] = second;
-  }
-  return out;
 }

@@ -106,7 +106,7 @@ function layerOf(file: UnderstoodFile, answers: ImportAnswers) {
 }
 
 /** Fields or columns that can hold a value. */
-export function fieldsOf({ file, answers }: Pick<Asking, 'file' | 'answers'>): readonly FieldSummary[] {
+function fieldsOf({ file, answers }: Pick<Asking, 'file' | 'answers'>): readonly FieldSummary[] {
   if (file.kind === 'points') return file.columns.filter((column) => column.name !== file.position?.first && column.name !== file.position?.second);
   return layerOf(file, answers)?.fields ?? [];
 }

@@ -17,7 +17,7 @@ export interface LabUnit {
 
 const same = (value: number) => value;
 
-export const labUnits: readonly LabUnit[] = [
+const labUnits: readonly LabUnit[] = [
   { id: 'brix', measure: 'brix', shown: '°Brix', convert: same },
   { id: 'baume', measure: 'brix', shown: '°Bé', convert: (value) => brixOfGravity(baumeToGravity(value)) },
   { id: 'oechsle', measure: 'brix', shown: '°Oe', convert: (value) => brixOfGravity(oechsleToGravity(value)) },

@@ -23,7 +23,7 @@ export interface BendRefused {
   readonly needed: number;
 }
 
-export const VISITS_FOR_BEND = 5;
+const VISITS_FOR_BEND = 5;
 
 export function findBend(points: readonly VisitPoint[], confidence: number): Bend | BendRefused {
   const n = points.length;

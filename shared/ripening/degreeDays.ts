@@ -5,7 +5,7 @@ import { AnalysisError } from '../analysis/analysisError.ts';
  * out lower than sums of days, and monthly ones lower still in the edge months, so they must not be mixed.
  * Source: Winkler et al. 1974, General Viticulture; class limits in °C as commonly printed.
  */
-export const BASE_TEMPERATURE_C = 10;
+const BASE_TEMPERATURE_C = 10;
 
 export interface DayTemperatures {
   readonly maxC: number;
@@ -37,7 +37,7 @@ export function heatSeason(latitudeDeg: number): { readonly from: readonly [mont
   return latitudeDeg >= 0 ? { from: [4, 1], to: [10, 31] } : { from: [10, 1], to: [4, 30] };
 }
 
-export const heatRegions = [
+const heatRegions = [
   { id: 'tooCool', from: -Infinity },
   { id: 'Ia', from: 850 },
   { id: 'Ib', from: 1111 },

@@ -43,7 +43,7 @@ export type TargetForecast =
  * A date range exists only when the slope is clear, and with three visits that happens mostly by luck: in simulation
  * such ranges at 95 % held the true day in 85 % of cases. With four visits they hold as they say.
  */
-export const VISITS_FOR_DATE = 4;
+const VISITS_FOR_DATE = 4;
 
 /**
  * Day on which the line meets the target. `of` chooses whose day: 'line' for the true mean, 'visit' for a visit that

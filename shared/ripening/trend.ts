@@ -56,7 +56,7 @@ export interface TrendOptions {
 }
 
 export const VISITS_NEEDED = 3;
-export const LAST_VISITS = 5;
+const LAST_VISITS = 5;
 
 /** Example: days 0 7 14 21 26, °Brix 18.2 19.6 21.1 22.3 23.5 → slope 0.201235 a day, 0.186707 to 0.215763 at 95 %. */
 export function fitTrend(points: readonly VisitPoint[], { confidence, lastVisits = LAST_VISITS, resolution = 0 }: TrendOptions): Trend | TrendRefused {

@@ -14,7 +14,7 @@ export interface FlagLimits {
   readonly maxC: number;
 }
 
-export const FLAG_LIMITS: FlagLimits = { rainMm: 5, maxC: 35 };
+const FLAG_LIMITS: FlagLimits = { rainMm: 5, maxC: 35 };
 
 /** Wet fruit and rain dilute, heat concentrates; unknown conditions raise no flag. */
 export function visitFlags({ wetFruit, rainMm, maxC }: VisitConditions, limits = FLAG_LIMITS): VisitFlag[] {

@@ -5,7 +5,7 @@ import type { WeatherDay } from './weatherTable.ts';
 const LOOK_BACK_DAYS = 2;
 const dayMs = 86_400_000;
 
-export const dayNumber = (day: string): number => Math.round(Date.parse(`${day}T00:00:00Z`) / dayMs);
+const dayNumber = (day: string): number => Math.round(Date.parse(`${day}T00:00:00Z`) / dayMs);
 
 /** Rain added up and highest temperature over the visit's day and the two before; null where nothing was recorded. */
 export function weatherBefore(days: readonly WeatherDay[], visit: string): { readonly rainMm: number | null; readonly maxC: number | null } {

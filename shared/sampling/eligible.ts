@@ -14,7 +14,7 @@ export interface EligibleRule {
   readonly endVines: number;
 }
 
-export const USUAL_RULE: EligibleRule = { edgeRows: 1, endVines: 2 };
+const USUAL_RULE: EligibleRule = { edgeRows: 1, endVines: 2 };
 
 export interface EligibleInput {
   readonly table: VineTable;

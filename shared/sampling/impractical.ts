@@ -14,7 +14,7 @@ export interface PracticalLimits {
   readonly hours: number | null;
 }
 
-export const DEFAULT_LIMITS: PracticalLimits = { visitsPerZone: 60, hours: null };
+const DEFAULT_LIMITS: PracticalLimits = { visitsPerZone: 60, hours: null };
 
 interface Outcome {
   readonly visits: number;
@@ -65,7 +65,7 @@ function helps({ kind, fits, visits, hours }: ImpracticalOption, plan: PlanCount
   return kind === 'divideZone' || fits || visits <= 0.99 * plan.visits || hours <= 0.99 * plan.hours;
 }
 
-export function isPractical(plan: PlanCounts, limits: PracticalLimits): boolean {
+function isPractical(plan: PlanCounts, limits: PracticalLimits): boolean {
   return plan.zones.every((zone) => zone.visits <= limits.visitsPerZone) && (limits.hours === null || plan.hours <= limits.hours);
 }
 

@@ -6,7 +6,7 @@ import { summarise } from './variances.ts';
  * Values far from the rest. They are flagged, never deleted: whoever plans sees the spread with and without them.
  * Modified z = 0.6745(x − median)/MAD, flagged beyond 3.5 (Iglewicz & Hoaglin 1993; NIST/SEMATECH e-Handbook 1.3.5.17).
  */
-export const OUTLIER_LIMIT = 3.5;
+const OUTLIER_LIMIT = 3.5;
 
 /** Median absolute deviation to standard deviation for normal data: 1/Φ⁻¹(0.75), to the digits usually printed. */
 const MAD_TO_SD = 1.4826;

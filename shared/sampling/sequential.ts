@@ -67,8 +67,8 @@ export interface StoppingRule {
   readonly randomOrder: boolean;
 }
 
-export const FIRST_LOOK = 10;
-export const FIRST_LOOK_SKEWED = 15;
+const FIRST_LOOK = 10;
+const FIRST_LOOK_SKEWED = 15;
 const EARLIEST_LOOK = 5;
 const CORRECTION = 3;
 const SKEW_CORRECTION = 8;

@@ -54,7 +54,7 @@ function share(zones: readonly AllocationZone[], total: number, worth: Worth): n
 }
 
 /** The minimum of every zone, or a sentence when the total cannot hold them: raising it silently would hide the cost. */
-export function startAtMinimum(zones: readonly AllocationZone[], total: number): number[] {
+function startAtMinimum(zones: readonly AllocationZone[], total: number): number[] {
   const counts = zones.map(minimumOf);
   const needed = counts.reduce((sum, n) => sum + n, 0);
   if (needed > total) {

@@ -22,10 +22,6 @@ export function contrast(one: string, other: string): number {
   return (high! + 0.05) / (low! + 0.05);
 }
 
-export function rampStops(ramp: RampName): readonly string[] {
-  return ramps[ramp];
-}
-
 /** Red, green, blue (0–255) of a share 0…1 along a ramp; shares outside are held at the ends. */
 export function rampColour(ramp: RampName, share: number): readonly [number, number, number] {
   const stops = ramps[ramp];

@@ -3,7 +3,7 @@ import { defineGrid } from '../../shared/analysis/grid.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
 
-export const partsOfBlock = ['north', 'northEast', 'east', 'southEast', 'south', 'southWest', 'west', 'northWest', 'middle'] as const;
+const partsOfBlock = ['north', 'northEast', 'east', 'southEast', 'south', 'southWest', 'west', 'northWest', 'middle'] as const;
 export type PartOfBlock = (typeof partsOfBlock)[number];
 
 /** Ground of a block that a finding is about. */

@@ -38,7 +38,7 @@ export interface StripZoneArea {
 }
 
 /** Rows of a block in metres of its UTM zone, in the order in which they came. */
-export function laidRows(block: StripBlock, rows: Pick<BlockRowsView, 'items'>): BlockRows {
+function laidRows(block: StripBlock, rows: Pick<BlockRowsView, 'items'>): BlockRows {
   return rowsFromStored({ boundary: block.boundary.coordinates as MultiPolygonLonLat, epsg: block.epsg, rowBearingDeg: block.rowBearingDeg }, rows.items);
 }
 

@@ -48,7 +48,7 @@ const flat = { shadow: 'none', borderRadius: '4px' };
 /** Only the parts that we use: the whole set is 25 KB that every phone would load first. */
 const aura = { ...base, components: { button, dialog, popover } };
 
-export const patchrowTheme = definePreset(aura, {
+const patchrowTheme = definePreset(aura, {
   primitive: { borderRadius: corners },
   semantic: {
     primary: slate,

@@ -1,7 +1,7 @@
 /** Stored in SI and metric, shown in the system a person chose. Factors: NIST SP 811 (2008), Appendix B. */
 export type UnitSystem = 'metric' | 'us';
 
-export const quantities = {
+const quantities = {
   area: { metric: ['ha', 1, 2], us: ['ac', 2.4710538, 2] },
   length: { metric: ['m', 1, 1], us: ['ft', 3.2808399, 1] },
   distance: { metric: ['km', 1, 1], us: ['mi', 0.62137119, 1] },

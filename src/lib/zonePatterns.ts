@@ -1,7 +1,7 @@
 import type { Pattern } from './colours.ts';
 
 /** The zone patterns as strokes on a tile of 8 px that repeats without a seam; one source for SVG, canvas and map. */
-export const patternTilePx = 8;
+const patternTilePx = 8;
 
 export const patternPaths: Readonly<Record<Pattern, string>> = {
   plain: '',

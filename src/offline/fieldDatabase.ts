@@ -101,7 +101,7 @@ export type FieldDatabase = IDBPDatabase<FieldSchema>;
 let opened: Promise<FieldDatabase> | null = null;
 
 /** The browser gives no store at all, or will not open it. */
-export class NoStore extends Error {}
+class NoStore extends Error {}
 
 /** True of what the phone's own store answers when it is not given, was taken away, or has no room. */
 export const isStoreFailure = (error: unknown): boolean => error instanceof NoStore || error instanceof DOMException;

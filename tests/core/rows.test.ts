@@ -4,8 +4,7 @@ import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts
 import { importRows, type RowLine } from '../../shared/geo/importedRows.ts';
 import { buildRows } from '../../shared/geo/rows.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
-import { vineTable, vineXY } from '../../shared/geo/vines.ts';
-import { vineLonLat, vinePairsLonLat } from '../../shared/geo/vinesOnMap.ts';
+import { vineXY } from '../../shared/geo/vines.ts';
 
 const closed = (...corners: LonLat[]): MultiPolygonLonLat => [[[...corners, corners[0]!]]];
 const north = closed([-1.8012, 42.5101], [-1.7985, 42.5104], [-1.7981, 42.5083], [-1.8009, 42.508]);
@@ -48,16 +47,6 @@ describe('rows from an outline in longitude and latitude', () => {
   it('a bearing typed the other way round gives the same rows', () => {
     expect(buildRows(north, { ...northFacts, bearingDeg: 207 }).rows).toHaveLength(109);
     expect(buildRows(north, { ...northFacts, bearingDeg: 207 }).frame.gridBearingDeg).toBeCloseTo(26.188865, 6);
-  });
-
-  it('every vine has the same position on the map singly and in bulk', () => {
-    const built = buildRows(south, southFacts);
-    const table = vineTable(built);
-    const pairs = vinePairsLonLat(table, built.epsg);
-    for (const vine of [0, 77, 5000, 12580]) {
-      expect(vineLonLat(built, table.row[vine]!, table.ordinal[vine]!)).toEqual([pairs[2 * vine], pairs[2 * vine + 1]]);
-    }
-    expect(vineLonLat(built, 500, 1)).toBeNull();
   });
 
   it('an outline or a bearing that is missing is refused with its remedy', () => {

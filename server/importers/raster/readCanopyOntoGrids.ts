@@ -36,7 +36,7 @@ export interface CanopyReading extends GridReading {
 const leastCovered = 0.5;
 
 /** Vines trained upright are about this wide seen from above (0.4 to 0.8 m, judgement). */
-export const rowStripM = 0.6;
+const rowStripM = 0.6;
 
 /**
  * Reads a picture onto grids with the values of canopy pixels alone, tile by tile; the pixels are passed over twice where a

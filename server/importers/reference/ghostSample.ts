@@ -3,7 +3,7 @@ import type { ImportQuestion, QuestionChoice, ReferenceSystem } from '../underst
 import { referenceFromEpsg, toLonLat } from './referenceSystem.ts';
 
 /** Positions drawn for a possible placing: enough to know a field by its shape, few enough for eight placings at once. */
-export const mostSampled = 200;
+const mostSampled = 200;
 
 type XYPair = readonly [number, number];
 

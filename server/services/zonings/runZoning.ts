@@ -38,7 +38,7 @@ export const zoningJob: JobHandler = {
 };
 
 /** Everything that decides the outcome, from what is stored: the same record gives the same zones. */
-export async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput> {
+async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput> {
   const options = zoningOptions.parse(zoning.options);
   if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', say('outlineChangedSinceAsked', { block: ground.block.name }));
   const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));

@@ -18,7 +18,7 @@ const font = { family: "'Open Sans', sans-serif", size: 12 };
 const quietDashes = [[3, 4], [8, 4], [2, 3]];
 
 /** Squares hatched at 45°, 5 px, for what is only forecast. */
-export function hatchPattern(colour: string): CanvasPattern | string {
+function hatchPattern(colour: string): CanvasPattern | string {
   const tile = document.createElement('canvas');
   tile.width = tile.height = 10;
   const pen = tile.getContext('2d');
@@ -74,7 +74,7 @@ function lineOf(series: ChartSeries, index: number, ink: ChartInk): LineSet[] {
   ];
 }
 
-export function translucent(hex: string, share: number): string {
+function translucent(hex: string, share: number): string {
   return /^#[0-9a-f]{6}$/i.test(hex) ? hex + Math.round(share * 255).toString(16).padStart(2, '0') : hex;
 }
 

@@ -14,7 +14,7 @@ type End = Counting['vineOneEnd'];
 type PlainRow = Pick<BlockRowView, 'vineCount'> & { readonly pieces: readonly { readonly firstVine: number }[] };
 
 /** Number of a vine as people count it, from 1 at the end where they begin: what the post says. */
-export function placeInRow(row: PlainRow, ordinal: number, vineOneEnd: End): number {
+function placeInRow(row: PlainRow, ordinal: number, vineOneEnd: End): number {
   const place = ordinal - firstOrdinal(row) + 1;
   return vineOneEnd === 'start' ? place : row.vineCount + 1 - place;
 }

@@ -1,5 +1,6 @@
 import { renameSync, rmSync, writeFileSync } from 'node:fs';
 import { finishZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import type { VerdictResult } from '../../shared/analysis/verdict.ts';
 import type { ZoningInput, ZoningResult } from '../../shared/analysis/zoningTypes.ts';
 import type { SecondThread } from '../workers/secondThread.ts';
 import { BadInput, type ZoneArguments } from './zoneArguments.ts';
@@ -26,7 +27,13 @@ export async function zoneFromFiles(asked: ZoneArguments, beside: SecondThread |
   const notes = Object.fromEntries(layers.map(({ layer, notes: own }) => [layer.id, own]));
   const report = zoningReport({ grid: block.grid, result, notes, secondsPerStage: stopwatch.seconds(), secondsBeside: { ...secondsBeside, ...secondsWeighing }, peakMemoryMb: Math.round(process.resourceUsage().maxRSS / 1024) });
   writeTogether([[asked.outPath, geoJson], ...(asked.reportPath === null ? [] : [[asked.reportPath, JSON.stringify(report, null, 1)] as [string, string]])]);
-  return `${chosen.zones.length} ${chosen.zones.length === 1 ? 'zone' : 'zones'} on ${report.grid.areaHa.toFixed(2)} ha; verdict ${result.verdict.verdict}, advised ${result.advisedK}. Written: ${asked.outPath}`;
+  return `${chosen.zones.length} ${chosen.zones.length === 1 ? 'zone' : 'zones'} on ${report.grid.areaHa.toFixed(2)} ha; ${verdictInWords(result.verdict)}, advised ${result.advisedK}. Written: ${asked.outPath}`;
+}
+
+/** The bare verdict where the layers alone cannot tell would be taken for one. */
+function verdictInWords({ verdict, isJudged, reasons }: VerdictResult): string {
+  if (isJudged) return `verdict ${verdict}`;
+  return reasons.some(({ code }) => code === 'too-small') ? 'too small to judge from layers alone' : 'no measured layer to judge from';
 }
 
 /** The zoning of `makeZoning`, with the second thread on the work beside the zones. */

@@ -28,6 +28,16 @@ function zone(...args: readonly string[]): Promise<CommandOutcome> {
 const usual = ['--block', 'block.geojson', '--layer', 'ndvi=vigour.tif#red=1,nir=2', '--layer', 'conductivity=ec.csv#value=ec_deep_mS_m', '--layer', 'elevation=dem.tif', '--layer', 'soil=soil.geojson#field=AWC_MM', '--cell', '3', '--seed', '2'];
 
 describe('the zoning command', () => {
+  it('says of ground under one hectare, and of terrain alone, that the layers cannot tell', async () => {
+    const small = join(folder, 'tiny');
+    mkdirSync(small);
+    writeCase(small, { name: 'tiny', areaHa: 0.4, pixelM: 0.5, seed: 5, k: 2 });
+    const tiny = await zone('--block', 'tiny/block.geojson', '--layer', 'ndvi=tiny/vigour.tif#red=1,nir=2', '--out', 'tiny/zones.geojson');
+    expect(tiny).toMatchObject({ exitCode: 0, line: expect.stringMatching(/^\d zones? on 0\.40 ha; too small to judge from layers alone, advised \d\. Written: /) });
+    const terrain = await zone('--block', 'block.geojson', '--layer', 'elevation=dem.tif#weight=1', '--out', 'tiny/zones.geojson');
+    expect(terrain).toMatchObject({ exitCode: 0, line: expect.stringMatching(/^\d zones? on 2\.00 ha; no measured layer to judge from, advised \d\. Written: /) });
+  });
+
   it('writes zones for a map and a report, the same bytes for the same seed', async () => {
     const first = await zone(...usual, '--readings', 'samples.csv', '--out', 'zones.geojson', '--report', 'report.json');
     expect(first).toMatchObject({ exitCode: 0, line: expect.stringMatching(/zones on 2\.00 ha; verdict \w+, advised \d/) });

@@ -83,14 +83,14 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.font('Helvetica').fontSize(8).text(texts.scan, pdf.page.width - edge - side, edge + side, { width: side, align: 'center' });
   pdf.font('Helvetica-Bold').fontSize(20).text(`${round.blockName}, ${person}`, edge, edge, { width });
   pdf.fontSize(12).text(day, { width });
-  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}.${round.gate ? ` ${texts.start}: ${round.gate}` : ''}`, { width });
-  pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}: ${targets}`).join('   '), { width });
+  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}.${round.gate ? ` ${texts.start}${texts.colon}${round.gate}` : ''}`, { width });
+  pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}${texts.colon}${targets}`).join('   '), { width });
   drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
-  const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}: ${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
+  const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}${texts.colon}${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
   const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
-  if (inBag.length > 0) pdf.text(`${texts.bag}: ${inBag.join(', ')}`, { width });
-  if (handfuls.length > 0) pdf.text(`${texts.ofEach}: ${handfuls.join('; ')}`, { width });
+  if (inBag.length > 0) pdf.text(`${texts.bag}${texts.colon}${inBag.join(', ')}`, { width });
+  if (handfuls.length > 0) pdf.text(`${texts.ofEach}${texts.colon}${handfuls.join('; ')}`, { width });
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);
   drawSafety(pdf, { round, texts, language, timeZone });
@@ -101,10 +101,10 @@ function drawDay(pdf: PDFKit.PDFDocument, { id, day }: FieldRound, { texts, widt
   if (day.length < 2) return;
   const blockWords = ({ block, vines }: DayStop) => `${block}, ${vines} ${texts.vines}`;
   if (day.every(({ place }) => place === null)) {
-    pdf.text(`${texts.alsoToday}: ${day.filter(({ roundId }) => roundId !== id).map(blockWords).join('; ')}`, { width });
+    pdf.text(`${texts.alsoToday}${texts.colon}${day.filter(({ roundId }) => roundId !== id).map(blockWords).join('; ')}`, { width });
     return;
   }
-  pdf.text(`${texts.dayOrder}: `, { width, continued: true });
+  pdf.text(`${texts.dayOrder}${texts.colon}`, { width, continued: true });
   day.forEach((stop, index) => {
     const way = stop.wayS === null ? '' : ` (${minutes(stop.wayS)})`;
     const isHere = stop.roundId === id;
@@ -122,11 +122,11 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   const told = (time: string) => moment.format(new Date(time));
   // The whole of the estate's day: the sheet is printed before and carried until evening.
   const closed = restrictionsWithin(round.restrictions, { ...dayBounds(timeZone, round.onDate), rowIds: round.stops.map(({ rowId }) => rowId) });
-  for (const { startsAt, endsAt, product, labelInterval, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}: ${product}, ${setBy}; ${labelInterval})`, edge, pdf.y, { width });
+  for (const { startsAt, endsAt, product, labelInterval, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}${texts.colon}${product}, ${setBy}; ${labelInterval})`, edge, pdf.y, { width });
   if (closed.length === 0) pdf.font('Helvetica').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
   // A paper does not learn of what is typed later: it says of when it speaks.
   pdf.font('Helvetica').fontSize(9).text(closed.length === 0 ? texts.law : `${texts.asOf} ${told(round.checkedAt)}. ${texts.law}`, { width });
-  pdf.text(`${texts.safety} ${texts.meeting}: ${round.safety.meetingPoint || '-'}. ${texts.emergency}: ${round.safety.emergencyNumber || '-'}.`, { width });
+  pdf.text(`${texts.safety} ${texts.meeting}${texts.colon}${round.safety.meetingPoint || '-'}. ${texts.emergency}${texts.colon}${round.safety.emergencyNumber || '-'}.`, { width });
   pdf.font('Helvetica-Bold').text(texts.notVine, { width });
   pdf.y += 4;
   rule();

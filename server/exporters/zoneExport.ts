@@ -7,6 +7,8 @@ export interface ZoneExport {
   zoningNumber: number;
   zoningName: string;
   state: string;
+  /** Of who takes the file away: tables open in a spreadsheet set to it. */
+  language: string;
   /** Instant the zones were made. */
   madeAt: Date;
   zones: readonly ExportedZone[];

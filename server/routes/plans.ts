@@ -13,6 +13,7 @@ import { listPlans, plannableZonings, viewPlan } from '../services/plans/viewPla
 import { standingOfPlan } from '../services/plans/standingOfPlan.ts';
 import { walkOfPlan } from '../services/plans/walkOfPlan.ts';
 import { changePlan, lockPlan, makePlan, redrawPlan } from '../services/plans/writePlan.ts';
+import { languageOf } from './language.ts';
 
 /** A plan's file in one of its formats. */
 export const planExport = z.object({ format: z.enum(Object.keys(planFormats) as [keyof typeof planFormats]) });
@@ -63,7 +64,7 @@ export function planRoutes(): Router {
   });
   router.get('/plans/:planId/export', read, async (request, response) => {
     const { format } = planExport.parse(request.query);
-    const file = await exportPlan(accessOf(request), idParam(request, 'planId'), format);
+    const file = await exportPlan(accessOf(request), idParam(request, 'planId'), { format, language: languageOf(request) });
     response.set('content-type', file.type).attachment(file.name).send(file.body);
   });
   return router;

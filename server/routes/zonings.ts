@@ -14,7 +14,7 @@ import { reportZoning } from '../services/zonings/reportZoning.ts';
 import { requestZoning } from '../services/zonings/request.ts';
 import { compareSeasons } from '../services/zonings/seasons.ts';
 import { listZonings, readLabels, viewZoning } from '../services/zonings/view.ts';
-import { inLanguageOf } from './language.ts';
+import { inLanguageOf, languageOf } from './language.ts';
 
 /** Zonings: asked for, read, kept as a draft, changed by hand, published. */
 export function zoningRoutes(): Router {
@@ -80,7 +80,7 @@ export function zoningRoutes(): Router {
   });
   router.get('/zonings/:zoningId/export', allow('exports.make'), async (request, response) => {
     const { format, zones = null } = zonesExport.parse(request.query);
-    const file = await exportZones(accessOf(request), idParam(request, 'zoningId'), { format, zones });
+    const file = await exportZones(accessOf(request), idParam(request, 'zoningId'), { format, zones, language: languageOf(request) });
     response.set('content-type', file.type).attachment(file.name).send(file.body);
   });
   router.get('/zonings/:zoningId/report', allow('exports.make'), async (request, response) => {

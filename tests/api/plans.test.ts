@@ -261,6 +261,10 @@ describe('a plan', () => {
     const csv = await manager.get(`${base()}/plans/${made.id}/export?format=csv`);
     expect(csv.headers['content-type']).toMatch(/text\/csv/);
     expect(csv.text.trim().split('\r\n')).toHaveLength(79);
+    const french = await manager.get(`${base()}/plans/${made.id}/export?format=csv`).set('accept-language', 'fr');
+    const [head, first] = french.text.split('\r\n');
+    expect(head).toBe('\uFEFFwalk_order;block;zone;zone_name;row;vine;reserve_row;reserve_vine;measures;draw_order;longitude;latitude;target_id');
+    expect(first).toMatch(/;-?\d+,\d{7};-?\d+,\d{7};/);
     const gpx = await manager.get(`${base()}/plans/${made.id}/export?format=gpx`).buffer(true).parse((response, done) => {
       let text = '';
       response.on('data', (part: Buffer) => (text += part.toString('utf8')));

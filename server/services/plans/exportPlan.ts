@@ -13,7 +13,7 @@ import { viewPlan } from './viewPlan.ts';
 interface PlanFormat {
   type: string;
   extension: string;
-  write: (plan: PlanView) => string | Buffer | Promise<Buffer>;
+  write: (plan: PlanView, language: string) => string | Buffer | Promise<Buffer>;
 }
 
 /** Formats a plan leaves in; another is a row here. */
@@ -26,9 +26,9 @@ export const planFormats = {
   kml: { type: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: (plan) => kmlOf(planFeatures(plan), (_, at) => ({ label: `${plan.targets[at]!.walkOrder ?? ''} ${vineMark(plan.targets[at]!)}`.trim(), colour: null })) },
 } satisfies Record<string, PlanFormat>;
 
-/** The vines of a plan as a file. */
-export async function exportPlan(access: Access, planId: string, format: keyof typeof planFormats): Promise<{ name: string; type: string; body: string | Buffer }> {
+/** The vines of a plan as a file; a table as a spreadsheet set to `language` opens it. */
+export async function exportPlan(access: Access, planId: string, { format, language }: { format: keyof typeof planFormats; language: string }): Promise<{ name: string; type: string; body: string | Buffer }> {
   const plan = await viewPlan(access, planId);
   const { type, extension, write }: PlanFormat = planFormats[format];
-  return { name: `${plan.blockName} ${plan.name}.${extension}`.replace(/[\\/:*?"<>|]+/g, '-'), type, body: await write(plan) };
+  return { name: `${plan.blockName} ${plan.name}.${extension}`.replace(/[\\/:*?"<>|]+/g, '-'), type, body: await write(plan, language) };
 }

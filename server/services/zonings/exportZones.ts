@@ -25,16 +25,16 @@ export function listFormats(): ExportFormatLine[] {
 }
 
 /** Zones as a file: those kept, or of a proposal the number asked for. Who took what away is noted. */
-export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null }): Promise<{ name: string; type: string; body: Buffer }> {
+export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null; language: string }): Promise<{ name: string; type: string; body: Buffer }> {
   const format = exportFormats.find(({ id }) => id === asked.format);
   if (!format) throw new Unusable('unknownFormat', say('unknownFormat', { format: asked.format, formats: exportFormats.map(({ id }) => id).join(', ') }));
-  const input = await exportInput(access, zoningId, { zones: asked.zones, withLayers: format.withLayers === true });
+  const input = await exportInput(access, zoningId, { zones: asked.zones, language: asked.language, withLayers: format.withLayers === true });
   const body = await format.write(input);
   await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
   return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.about ? [format.about] : [])], format.extension), type: format.mediaType, body };
 }
 
-async function exportInput(access: Access, zoningId: string, { zones, withLayers }: { zones: number | null; withLayers: boolean }): Promise<ZoneExport> {
+async function exportInput(access: Access, zoningId: string, { zones, language, withLayers }: { zones: number | null; language: string; withLayers: boolean }): Promise<ZoneExport> {
   const view = await viewZoning(access, zoningId, zones);
   if (view.zones.length === 0) throw new Clash('notReady', say('noZonesToExport'));
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
@@ -45,7 +45,7 @@ async function exportInput(access: Access, zoningId: string, { zones, withLayers
   const { cols, rows, cellSizeM, epsg, x0, y0 } = gridOf(ground);
   const exported: ExportedZone[] = view.zones.map(({ number, name, colour, areaM2, vines, missing, geometry }) => ({ number, name, colour, areaM2, vines, missing, polygonsLonLat: geometry.coordinates as unknown as MultiPolygonLonLat }));
   return {
-    estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, madeAt: zoning.createdAt,
+    estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, language, madeAt: zoning.createdAt,
     zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 }, layers: withLayers ? await layerCells(access, view, zoning) : [],
   };
 }

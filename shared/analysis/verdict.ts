@@ -65,9 +65,11 @@ export interface VerdictInput {
   readonly layerIds: readonly string[];
   readonly structures: readonly LayerStructure[];
   readonly curve: readonly GapAtK[];
+  /** Layers whose narrow stripes were evened out before the curve was made. */
+  readonly evenedIds?: readonly string[];
 }
 
-export function judge({ areaM2, layerIds, structures, curve }: VerdictInput): VerdictResult {
+export function judge({ areaM2, layerIds, structures, curve, evenedIds = [] }: VerdictInput): VerdictResult {
   if (structures.length === 0) return withoutEvidence();
   const values = structures.map(({ structure }) => structure);
   const meanStructure = values.reduce((sum, value) => sum + value, 0) / values.length;
@@ -83,7 +85,7 @@ export function judge({ areaM2, layerIds, structures, curve }: VerdictInput): Ve
   const reasons: VerdictReason[] = [
     ...(verdict === 'several' && !isSmooth ? [] : [reason(isSmooth ? 'structure' : 'no-structure', null, { value: meanStructure, highest: highestStructure, limit: values.length === 1 ? LEAST_SINGLE_STRUCTURE : LEAST_MEAN_STRUCTURE })]),
     reason(hasPlateaus ? 'plateaus' : 'slope-only', null, { value: best.gap, limit: gapLimit, deviations: best.gap / best.gapSd, k: best.k }),
-    ...structures.flatMap((layer, i) => (layer.isStriped ? [reason('stripes-evened', layerIds[i]!, {})] : [])),
+    ...structures.flatMap((layer, i) => (layer.isStriped || evenedIds.includes(layerIds[i]!) ? [reason('stripes-evened', layerIds[i]!, {})] : [])),
   ];
   if (values.length === 1) reasons.push(reason('one-layer', layerIds[0]!, {}));
   if (areaM2 < SMALL_AREA_M2) reasons.push(reason('too-small', null, { value: areaM2, limit: SMALL_AREA_M2 }));

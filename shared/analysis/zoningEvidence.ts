@@ -10,6 +10,7 @@ import { evidenceField, type EvidenceField } from './verdictField.ts';
 import { gapCurve, type GapAtK } from './verdictGap.ts';
 import { groundThatStandsOut, type StandingOut } from './verdictStandOut.ts';
 import { layerStructures, patchWidthM } from './verdictStructure.ts';
+import { withoutWaves } from './verdictWaves.ts';
 import { streamOf } from './zoningFit.ts';
 import type { PreparedLayer } from './zoningPrepare.ts';
 
@@ -37,6 +38,8 @@ export interface EvidenceTask {
   readonly seed: number;
   /** For the comparison with random fields, layers times √weight. */
   readonly gapField: EvidenceField | null;
+  /** Its layers, in the same order. */
+  readonly gapIds: readonly string[];
   /** For the question at one patch width; measured layers only. */
   readonly structureField: EvidenceField | null;
   readonly measuredIds: readonly string[];
@@ -62,6 +65,7 @@ export function evidenceTask({ grid, layers, weights, areaM2, seed, scattered = 
     areaM2,
     seed,
     gapField: clear.length === 0 ? null : weighted(evidenceField(grid, cellsOf(clear), { mostCells: MOST_GAP_CELLS }), clear.map(({ weight }) => weight)),
+    gapIds: clear.map(({ layer }) => layer.id),
     structureField: measured.length === 0 ? null : evidenceField(grid, cellsOf(measured), { coarsestCellM: patchWidthM(areaM2) / CELLS_PER_PATCH }),
     measuredIds: measured.map(({ layer }) => layer.id),
   };
@@ -74,11 +78,19 @@ export function structuresOf(grid: Grid, layers: readonly { readonly id: string;
   return new Map(layerStructures(field, areaM2).map(({ structure }, l) => [layers[l]!.id, structure]));
 }
 
-export function weighEvidence({ areaM2, seed, gapField, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
-  const curve = gapField === null ? [] : gapCurve(gapField, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
+export function weighEvidence({ areaM2, seed, gapField, gapIds, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
   const structures = structureField === null ? [] : layerStructures(structureField, areaM2);
-  const verdict = judge({ areaM2, layerIds: measuredIds, structures, curve });
-  const standingOut = gapField !== null && structures.length > 0 && verdict.reasons.every(({ code }) => code !== 'structure') ? groundThatStandsOut(gapField, streamOf(seed, STAND_OUT_STREAM)) : null;
+  const weigh = (field: EvidenceField | null, evenedIds: readonly string[] = []) => {
+    const curve = field === null ? [] : gapCurve(field, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
+    return { field, curve, verdict: judge({ areaM2, layerIds: measuredIds, structures, curve, evenedIds }) };
+  };
+  let weighed = weigh(gapField);
+  const isPlain = gapField !== null && structures.length > 0 && weighed.verdict.reasons.every(({ code }) => code !== 'structure');
+  const evened = isPlain ? withoutWaves(gapField) : null;
+  // Stripes have plateaus of their own; what is left of the layers is what may be zoned.
+  if (evened) weighed = weigh(evened.field, gapIds.filter((_, l) => evened.evened[l]));
+  const { field, curve, verdict } = weighed;
+  const standingOut = isPlain && field !== null ? groundThatStandsOut(field, streamOf(seed, STAND_OUT_STREAM)) : null;
   return { verdict, curve, layerCount: gapField?.layers.length ?? 0, standingOut };
 }
 

@@ -106,7 +106,12 @@ export const planChoices = z.object({
   isCautious: z.boolean().default(false),
   /** Least vines in a zone; the estate's own when left out. */
   minimum: z.number().int().min(2).max(200).optional(),
-  limits: z.object({ visitsPerZone: z.number().int().min(2).max(2000).optional(), hours: z.number().positive().max(1000).nullable().optional() }).default({}),
+  limits: z.object({
+    visitsPerZone: z.number().int().min(2).max(2000).optional(),
+    hours: z.number().positive().max(1000).nullable().optional(),
+    /** Share of a zone's work that dividing it must save to be recommended; a fifth when left out. */
+    worthDividing: z.number().min(0).max(0.9).optional(),
+  }).default({}),
   /** Finding a vine and setting up there; with the way to it in plans whose basis has no walks. */
   secondsPerVine: z.number().min(0).max(3600).default(15),
   /** Seconds more at each vine of a zone, by its number: steep, netted or dense ground. */

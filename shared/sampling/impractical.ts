@@ -1,5 +1,5 @@
 import { smallestScale } from './budget.ts';
-import type { Division } from './divideZone.ts';
+import { WORTH_DIVIDING, type Division } from './divideZone.ts';
 import type { Margin } from './margins.ts';
 import { planCounts, type PlanCounts } from './planCounts.ts';
 import type { PlanQuestion } from './planQuestion.ts';
@@ -12,6 +12,8 @@ export interface PracticalLimits {
   readonly visitsPerZone: number;
   /** A day's hours; null for no limit. */
   readonly hours: number | null;
+  /** Share of a zone's work that dividing it must save to be recommended; `WORTH_DIVIDING` when left out. */
+  readonly worthDividing?: number;
 }
 
 const DEFAULT_LIMITS: PracticalLimits = { visitsPerZone: 60, hours: null };
@@ -113,6 +115,6 @@ function divided({ plan, divisions = [], limits = DEFAULT_LIMITS }: AdviceQuesti
       const hours = plan.hours - present.hours * (1 - division.total / present.visits);
       const othersFit = plan.zones.every((other) => other.zone === zone || other.visits <= limits.visitsPerZone);
       const fits = othersFit && Math.max(...division.counts) <= limits.visitsPerZone && (limits.hours === null || hours <= limits.hours);
-      return { kind: 'divideZone', zone, division, layerName, recommended: division.recommended, visits, hours, saving: 1 - visits / plan.visits, fits };
+      return { kind: 'divideZone', zone, division, layerName, recommended: division.saving >= (limits.worthDividing ?? WORTH_DIVIDING), visits, hours, saving: 1 - visits / plan.visits, fits };
     });
 }

@@ -4,6 +4,7 @@ import type { PlanChoices, PlannedMeasureChoice } from '../contracts/planChoices
 import type { ZoneDivision } from '../contracts/plans.ts';
 import { AnalysisError } from '../analysis/analysisError.ts';
 import { planForBudget, type Budget, type BudgetAnswer } from './budget.ts';
+import { WORTH_DIVIDING } from './divideZone.ts';
 import { betweenShare, handfulSeconds, handfulSpread } from './handful.ts';
 import { adviseImpractical, type ImpracticalAdvice, type PracticalLimits } from './impractical.ts';
 import { pilotQuotas } from './pilot.ts';
@@ -134,5 +135,5 @@ function minimumOf(basis: PlanBasis, { minimum }: PlanChoices): number {
 }
 
 function limitsOf(basis: PlanBasis, { limits, people }: PlanChoices): PracticalLimits {
-  return { visitsPerZone: limits.visitsPerZone ?? basis.settings.impracticalSamples, hours: limits.hours === undefined ? basis.settings.dayHours * people : limits.hours };
+  return { worthDividing: limits.worthDividing ?? WORTH_DIVIDING, visitsPerZone: limits.visitsPerZone ?? basis.settings.impracticalSamples, hours: limits.hours === undefined ? basis.settings.dayHours * people : limits.hours };
 }

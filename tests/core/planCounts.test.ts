@@ -334,5 +334,9 @@ describe('dividing a zone', () => {
     const option = advice.options.find((candidate) => candidate.kind === 'divideZone')!;
     expect(option).toMatchObject({ recommended: true, fits: true, visits: division.total });
     expect(option.saving).toBeGreaterThanOrEqual(0.2);
+    // Who asks for more than it saves is not advised to divide; who asks for a little less is.
+    const asked = (worthDividing: number) => adviseImpractical({ question, plan, confidences: [0.9], limits: { visitsPerZone: 50, hours: null, worthDividing }, divisions: [{ zone: '1', division }] })!.options.find(({ kind }) => kind === 'divideZone')!;
+    expect(asked(division.saving + 0.01)).toMatchObject({ recommended: false, visits: division.total });
+    expect(asked(division.saving - 0.01)).toMatchObject({ recommended: true });
   });
 });

@@ -50,7 +50,7 @@ export interface Division {
 }
 
 /** Share of the work that must be saved before dividing is advised. */
-const WORTH_DIVIDING = 0.2;
+export const WORTH_DIVIDING = 0.2;
 const MINIMUM_READINGS = 6;
 const MINIMUM_SHARE = 0.2;
 const PRIOR_DF = 6;

@@ -1,11 +1,11 @@
 import { describe, expect, it } from 'vitest';
 import type { ZoningView } from '../../shared/contracts/zonings.ts';
-import { numberWords, warningWords } from '../../src/components/zones/zoningWords.ts';
+import { adviceWords, numberWords, warningWords } from '../../src/components/zones/zoningWords.ts';
 import type { Format } from '../../src/lib/format.ts';
 
 /** Names of sentences with what is put into them, so that a wording may change. */
 const t = (key: string, named: Record<string, unknown> = {}) => (key === 'zones.count' ? `${String(named.n)} zones` : `${key.replace('zones.number.', '')}(${Object.values(named).join(', ')})`);
-const format = { percent: (value: number) => `${Math.round(100 * value)} %`, number: (value: number) => String(value) } as Format;
+const format = { percent: (value: number) => `${Math.round(100 * value)} %`, number: (value: number) => String(value), list: (names: readonly string[]) => names.join(' and ') } as Format;
 const row = (k: number, score: number, holds: number | null, stability = 0.9) => ({ k, score, holds, stability });
 const words = (advisedZones: number, alsoOffer: number[], evidence: ReturnType<typeof row>[]) => numberWords({ advisedZones, alsoOffer, evidence } as unknown as ZoningView, { t, format });
 
@@ -34,5 +34,24 @@ describe('what is said before zones are used', () => {
     const warnings: ZoningView['warnings'] = [{ code: 'layer-coverage', about: 'a', figures: { coverage: 0.72, limit: 0.9 } }, { code: 'number-fixed', about: null, figures: { chosen: 3, advised: 2 } }];
     const layers = [{ layerId: 'a', name: 'Flight of June' }] as unknown as ZoningView['layers'];
     expect(warningWords({ warnings, layers }, { t, format })).toEqual(['zones.warning.layer-coverage(72 %, 90 %, Flight of June)', 'zones.warning.number-fixed(3, 2, )']);
+  });
+});
+
+describe('why a layer has its weight', () => {
+  type Layer = ZoningView['layers'][number];
+  const layer = (layerId: string, role: Layer['role'], advised: Partial<NonNullable<Layer['advised']>> | null) => ({ layerId, name: layerId.toUpperCase(), role, advised: advised && { weight: 0, about: null, figures: {}, ...advised } }) as Layer;
+  const [vigour, soil] = [layer('vigour', 'evidence', { code: 'repeats', about: 'soil' }), layer('soil', 'evidence', { code: 'evidence' })];
+  const edges = { correlation: 0.6, excess: 0.3, deviations: 4 };
+  const why = (own: Layer) => adviceWords(own, [vigour, soil, own], { t, format });
+
+  it('names the layer it repeats, or the measured layers whose edges it shares', () => {
+    expect(why(vigour)).toBe('zones.advice.repeats(SOIL, 0, 0)');
+    expect(why(layer('map', 'context', { code: 'context-offered', figures: edges }))).toBe('zones.advice.context-offered(VIGOUR and SOIL, 0, 0)');
+  });
+
+  it('does not say of edges that nobody could compare that they lie elsewhere', () => {
+    expect(why(layer('map', 'context', { code: 'context-off', figures: edges }))).toBe('zones.advice.context-off(, 0, 0)');
+    expect(why(layer('map', 'context', { code: 'context-off' }))).toBe('zones.advice.context-unknown(, 0, 0)');
+    expect(why(layer('map', 'context', null))).toBe('');
   });
 });

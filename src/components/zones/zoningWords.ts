@@ -2,6 +2,7 @@ import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { Format } from '../../lib/format.ts';
 
+type Layer = ZoningView['layers'][number];
 type Translate = (key: string, named?: Record<string, unknown>, plural?: number) => string;
 
 export interface Verdict {
@@ -38,6 +39,16 @@ export function warningWords({ warnings, layers }: Pick<ZoningView, 'warnings' |
     const named = Object.entries(figures).map(([name, value]) => [name, value === null ? '' : shares.has(name) ? format.percent(value) : format.number(value)]);
     return t(`zones.warning.${code}`, { ...Object.fromEntries(named), about: layers.find(({ layerId }) => layerId === about)?.name ?? '' });
   });
+}
+
+/** One sentence why a layer's weight is advised; empty for runs of before. */
+export function adviceWords({ advised }: Layer, layers: readonly Layer[], { t, format }: { t: Translate; format: Format }): string {
+  if (!advised) return '';
+  const { code, about, figures } = advised;
+  const isUnknown = code === 'context-off' && figures.correlation === undefined;
+  // Edges of terrain and maps are compared with those of all measured layers together.
+  const beside = layers.filter(({ layerId, role }) => (code === 'context-offered' ? role === 'evidence' : layerId === about));
+  return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map(({ name }) => name)), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
 }
 
 /** What an adjusted Rand index means, in five steps of our own. */

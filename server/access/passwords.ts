@@ -1,7 +1,7 @@
 import { hash, verify } from '@node-rs/argon2';
 import { createHash, randomBytes } from 'node:crypto';
 
-// Argon2id with the first recommended option of RFC 9106 §4 scaled to a small server: 19 MiB, 2 passes, 1 lane (OWASP's minimum).
+// Argon2id (RFC 9106) at the least cost that OWASP's password storage cheat sheet recommends: 19 MiB, 2 passes, 1 lane.
 const cost = { memoryCost: 19_456, timeCost: 2, parallelism: 1 };
 
 export function hashPassword(password: string): Promise<string> {

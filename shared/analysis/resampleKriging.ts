@@ -1,6 +1,7 @@
 /**
  * Point readings onto a grid by ordinary kriging in a moving neighbourhood: cells of a small square share the nearest points
- * of each quadrant around its middle, so that a survey driven in lines is not read from one line alone.
+ * of each quadrant around its middle, so that a survey driven in lines is not read from one line alone (quadrant search:
+ * Isaaks & Srivastava 1989, from memory).
  * In: points in the grid's metres and a model of their likeness. Out: cells, NaN beyond the reach of the data, and the
  * standard error in the middle of the squares. Cost: one factorisation of some twenty points a square of cells.
  */

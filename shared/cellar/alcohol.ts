@@ -5,7 +5,8 @@ import { sugarOfBrix } from './mustSugar.ts';
 /**
  * Potential alcohol, % by volume: what would form if all sugar fermented. Always a range with its method; never the
  * alcohol of a label. 16.83 g/L of sugar for 1 % is the convention of the EU; yeasts tested need 16.5 to 17.2 and the
- * rule of thumb is 18; theory, with nothing lost, is 15.43. From °Brix sugar comes by the OIV's table of must, or as all
+ * rule of thumb is 18 (all three as commonly printed, from secondary sources); theory, two ethanol from each hexose with
+ * nothing lost, is 15.43. From °Brix sugar comes by the OIV's table of must, or as all
  * solids less an allowance.
  */
 export interface AlcoholSettings {

@@ -5,8 +5,8 @@ import { asDependent, combineDependent, type Dependent } from './dependent.ts';
 
 /**
  * What a lot from several zones will be like: weighted by expected tonnes, with the error of the zone values and of the
- * tonnes themselves (first order); what zones have in common, such as a growth factor, errs for all of them at once and
- * moves no weight. Where any tonnes are unknown all weights fall back to area, and that is said.
+ * tonnes themselves (first order: law of propagation, JCGM 100:2008 §5); what zones have in common, such as a growth
+ * factor, errs for all of them at once and moves no weight. Where any tonnes are unknown all weights fall back to area, and that is said.
  */
 export interface LotPart {
   readonly zone: string;

@@ -15,7 +15,7 @@ export interface RoughPlace {
   readonly awayM: number;
 }
 
-/** Phones under leaves are 4 to 12 m off (forest studies, J. Forestry 2017 and 2020), and many claim less: a smaller circle is not believed. */
+/** Phones under leaves are 4 to 12 m off (in forests: Tomaštík et al. 2017, Forestry 90:187, from memory), and many claim less: a smaller circle is not believed. */
 const leastReachM = 5;
 const earthRadiusM = 6_371_008.8;
 

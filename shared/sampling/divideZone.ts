@@ -7,7 +7,7 @@ import { pooledVariance, summarise, type VariancePart } from './variances.ts';
 /**
  * Would a zone that asks for too many samples be cheaper as two? The cut is sought along one layer among the zone's
  * readings. One degree of freedom is taken off for having chosen the best cut, and each side's spread is pulled
- * towards the common one, so that chance does not pass for two populations.
+ * towards the common one, so that chance does not pass for two populations. Own rule.
  */
 export interface ZoneReading {
   readonly value: number;

@@ -15,7 +15,7 @@ export interface MergedFigures {
 }
 
 /**
- * Spread and mean of zones taken as one: the spread inside each, and that between their means (Cochran 1977, §5.9, the
+ * Spread and mean of zones taken as one: the spread inside each, and that between their means (Cochran 1977, §5.6, the
  * parts of a total variance). Spreads that are shares of the mean stay shares; without means nothing is known of the
  * difference, and only the spreads inside are pooled.
  */

@@ -4,6 +4,8 @@ import { ageWeighted, pooledVariance, SEASON_WEIGHT, summarise, type VariancePar
  * Spread between vines from earlier readings: pooled inside zone × season × visit, never across dates, because a
  * trend of ripening is not sampling noise (four readings in each of two seasons: 0.18 within, 2.31 if thrown together).
  * For measures whose spread grows with the mean, squared coefficients of variation are pooled instead of variances.
+ * Source: Σ(n − 1)s²/Σ(n − 1), the mean square within groups of a one-way analysis of variance (textbook); that older
+ * seasons count less is judgement.
  */
 export interface HistoryReading {
   readonly block: string;

@@ -4,7 +4,7 @@ import { HARD_MINIMUM, sampleSize, type SampleSize } from './sampleSize.ts';
 
 /**
  * How well a mean is known from the readings so far, and how many more the wanted margin takes.
- * x̄ ± t·s/√n·√(1 − n/N). Sources: IUPAC Gold Book C01247 (without the last factor), Cochran 1977 §2.7.
+ * x̄ ± t·s/√n·√(1 − n/N). Sources: IUPAC Gold Book C01247 (without the last factor), Cochran 1977 §§2.7–2.8.
  */
 
 /** An estimate with the spread of its own error. Everything downstream (lots, change, forecast) passes these on. */

@@ -1,8 +1,8 @@
 import { chiSquareQuantile } from './quantiles.ts';
 
 /**
- * How unsure a standard deviation is: s·√(ν/χ²). For normal readings (standard result; e.g. Cochran 1977 §2.13 warns
- * how far it leans on normality).
+ * How unsure a standard deviation is: s·√(ν/χ²). A standard result for normal readings, and one that
+ * leans on their being normal more than the interval of a mean does (Cochran 1977 ch. 2, from memory).
  */
 export function sdInterval(sd: number, df: number, confidence: number): { readonly lower: number; readonly upper: number } {
   const tail = (1 - confidence) / 2;

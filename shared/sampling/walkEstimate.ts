@@ -9,7 +9,8 @@ import { metresBySlope, USUAL_PACE, USUAL_SLOPE_SPEEDS, type PacedGround } from 
 
 /**
  * What the walk will take before its vines are drawn: exact walks past trial vines of this block, for a few counts, and
- * between them a power of the count (a walk past few vines grows about as its square root, past very many hardly at all).
+ * between them a power of the count (a walk past few vines grows about as its square root, as the
+ * shortest way through points of a plane does: Beardwood, Halton & Hammersley 1959; past very many hardly at all).
  * Own rule; against walks that were then laid: tests/core/walkEstimate.test.ts.
  */
 export interface TrialGround {

@@ -15,7 +15,8 @@ interface Worth {
 
 /**
  * Whole numbers with the smallest variance for a total: every zone starts at its minimum, then each sample goes to
- * the largest N·S/√(n(n+1)). With `byCost` the square of that priority is divided by the zone's cost.
+ * the largest N·S/√(n(n+1)) (Wright 2012, The American Statistician 66:217). With `byCost` the square of that priority is
+ * divided by the zone's cost.
  */
 export function exactCounts(zones: readonly AllocationZone[], total: number, { byCost = false } = {}): number[] {
   const weights = zones.map((zone) => (zone.vines * zone.sd) ** 2);

@@ -14,6 +14,7 @@ import { VineFindingRecord } from '../../server/models/VineFindingRecord.ts';
 import { Zoning } from '../../server/models/Zoning.ts';
 import type { ConflictList } from '../../shared/contracts/conflicts.ts';
 import type { BatchAnswer } from '../../shared/contracts/readings.ts';
+import type { FieldRound } from '../../shared/contracts/rounds.ts';
 import { makeFieldRound, type FieldRoundMade } from './support/makeFieldRound.ts';
 import { startTestApp, type TestApp } from './support/testApp.ts';
 
@@ -54,6 +55,15 @@ describe('two records of one thing', () => {
     expect(await Reading.query().resultSize()).toBe(2);
     expect(await AuditEntry.query().where({ action: 'conflicts.settle', subjectId: card!.id }).resultSize()).toBe(1);
     expect((await settle('manager', card!.id, { choice: 'repeat' })).status).toBe(409);
+  });
+
+  it('of one person, where one corrects the other, reach the phone as the correction alone', async () => {
+    const first = made.reading(0, { value: 12 });
+    await send(ana, { readings: [first] });
+    await send(ana, { readings: [made.reading(0, { value: 21, supersedes: first.id })] });
+    const round = (await made.crew[ana]!.agent.get(`${base()}/rounds/${made.roundId}`)).body as FieldRound;
+    expect(round.received.map(({ targetId, value }) => [targetId, value])).toEqual([[made.targets[0]!.id, 21]]);
+    expect(round.readAsks).toEqual([{ targetId: made.targets[0]!.id, measureCode: 'clusterCount' }]);
   });
 
   it('count as one vine when they are repeats, and as two when both are real', async () => {

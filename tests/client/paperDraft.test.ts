@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { boxValue, emptyDraft, paperBatch, retyped, unreadBoxes, vineOfLine, withOutcomes, type PaperDraft } from '../../src/components/field/paperDraft.ts';
+import { boxValue, emptyDraft, paperBatch, retyped, typedVines, unreadBoxes, vineOfLine, withOutcomes, type PaperDraft } from '../../src/components/field/paperDraft.ts';
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
 
 const round = {
@@ -28,7 +28,9 @@ describe('a sheet that is typed', () => {
     const draft = typed(typed(emptyDraft(round), 't1', '-3'), 't2', '12,5');
     expect(paperBatch(round, draft, sheet).readings).toEqual([]);
     expect(unreadBoxes(round, draft)).toBe(2);
+    expect(typedVines(round, draft)).toBe(0);
     expect(unreadBoxes(round, typed(draft, 't2', '12'))).toBe(1);
+    expect(typedVines(round, typed(draft, 't2', '12'))).toBe(1);
   });
 
   it('keeps the id of a box until it is saved, and corrects after that', () => {

@@ -43,7 +43,8 @@ export async function fieldRound(access: Access, roundId: string, now: Date): Pr
   const { shares } = round.walk as RoundWalk;
   const stops = (me ? shares.filter((share) => share.personId === personId) : shares).flatMap((share) => share.stops);
   const zoneOfTarget = new Map(targets.map(({ id, zoneId }) => [id, sampledZoneOf.get(zoneId) ?? 0]));
-  const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').select('id', 'targetId', 'measureCode', 'value', 'personId', 'rowId', 'ordinal');
+  // What was corrected is told by its correction alone: the phone takes the last value of a vine, as the office does.
+  const readings = await Reading.query().where({ estateId, roundId }).whereNull('excludedReason').whereNotExists(Reading.query().alias('later').whereColumn('later.supersedes', 'readings.id').whereColumn('later.estateId', 'readings.estateId')).orderBy('takenAt').select('id', 'targetId', 'measureCode', 'value', 'personId', 'rowId', 'ordinal');
   const { block } = ground;
   const targetOf = new Map(targets.map((target) => [target.id, target]));
   const atReserve = new Set(readings.flatMap(({ targetId, rowId, ordinal }) => (targetId !== null && isReserveOf(targetOf.get(targetId), { rowId, ordinal }) ? [targetId] : [])));

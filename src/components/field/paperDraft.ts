@@ -70,6 +70,15 @@ export function unreadBoxes(round: FieldRound, draft: PaperDraft): number {
   return round.stops.flatMap((stop) => askedAt(round, stop).filter((measure) => 'problem' in boxValue(draft[stop.targetId]?.cells[measure.code]?.text ?? '', measure))).length;
 }
 
+/** Vines of which something is told: a value that can be read, from here or the phone, or what stands there instead. */
+export function typedVines(round: FieldRound, draft: PaperDraft): number {
+  const isTold = (stop: WalkStop, { cells }: PaperLine) => askedAt(round, stop).some((measure) => {
+    const read = boxValue(cells[measure.code]?.text ?? '', measure);
+    return ('value' in read && read.value !== null) || fromPhone(round, stop.targetId, measure.code) !== null;
+  });
+  return round.stops.filter((stop) => draft[stop.targetId] !== undefined && (draft[stop.targetId]!.states[0] !== '' || isTold(stop, draft[stop.targetId]!))).length;
+}
+
 /** Value that the phone had sent of a line, when there is one. */
 export function fromPhone(round: FieldRound, targetId: string, code: string): number | null {
   return round.received.find((reading) => reading.targetId === targetId && reading.measureCode === code)?.value ?? null;

@@ -26,7 +26,10 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
   const set = (facts: Partial<PlanChoices>) => (choices.value = { ...choices.value, ...facts });
   const measures = (change: (choice: PlannedMeasureChoice) => PlannedMeasureChoice) => set({ measures: choices.value.measures.map(change) });
   const adjust = (code: string, facts: Partial<PlannedMeasureChoice>) => measures((choice) => (choice.code === code ? { ...choice, ...facts } : choice));
-  const marginOf = ({ code, margin }: PlannedMeasureChoice) => margin ?? basis.value!.measures.find((measure) => measure.code === code)!.margin;
+  const measureOf = (code: string) => basis.value!.measures.find((measure) => measure.code === code)!;
+  const marginOf = ({ code, margin }: PlannedMeasureChoice) => margin ?? measureOf(code).margin;
+  /** A measure that asks for less already stays as it is. */
+  const noSurerThan = (level: number, choice: PlannedMeasureChoice): PlannedMeasureChoice => ((choice.confidence ?? measureOf(choice.code).confidence) <= level ? choice : { ...choice, confidence: level as NonNullable<typeof choice.confidence> });
 
   function toggle(code: string): void {
     const rest = choices.value.measures.filter((choice) => choice.code !== code);
@@ -47,7 +50,7 @@ export function usePlanChoices(basis: Ref<PlanBasis | null>, choices: Ref<PlanCh
   const part = (zone: number) => (choices.value = choicesParted(choices.value, zone));
   function takeAdvice(option: ImpracticalOption): void {
     if (option.kind === 'widerMargin') scaleMargins(option.scale);
-    if (option.kind === 'lowerConfidence') measures((choice) => ({ ...choice, confidence: option.confidence as NonNullable<typeof choice.confidence> }));
+    if (option.kind === 'lowerConfidence') measures((choice) => noSurerThan(option.confidence, choice));
     if (option.kind === 'poolZones') pool(Number(option.zones[0]), Number(option.zones[1]));
   }
   return { toggle, adjust, setTyped, setZoneSeconds, scaleMargins, takeAdvice, pool, part, set };

@@ -22,7 +22,7 @@ const NARROWEST_TREAD_TOGETHER_M = 15;
 const MOST_TREADS = 6;
 /** Share of the profile's variance that the stair must explain, alone or when another layer steps along. */
 const LEAST_EXPLAINED = 0.95;
-const LEAST_EXPLAINED_TOGETHER = 0.85;
+export const LEAST_EXPLAINED_TOGETHER = 0.85;
 const LEAST_CORRELATION = 0.8;
 
 /** `others`: the same profile of each other layer. */

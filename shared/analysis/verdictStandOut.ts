@@ -19,13 +19,15 @@ import { findPatches } from './sievePatches.ts';
 import { reason, type VerdictResult } from './verdict.ts';
 import { maskedSmoother } from './verdictCalmCells.ts';
 import type { EvidenceField } from './verdictField.ts';
-import { stepTogether } from './verdictPlateaus.ts';
-import { stripePattern, strongestProfile } from './verdictStripes.ts';
+import { LEAST_EXPLAINED_TOGETHER, stairShare, stepTogether } from './verdictPlateaus.ts';
+import { runThrough, stripePattern, strongestProfile } from './verdictStripes.ts';
 import { PROFILE_STEP_M } from './verdictStructure.ts';
 import type { ZoneCountAdvice } from './zoneCount.ts';
 
 /** Side of the patch averaged over: narrower ground cannot be worked apart. */
 const PATCH_M = 15;
+/** A few rows; of coarse cells one is enough. */
+const NARROWEST_STRIP_M = 10;
 const PULLED_IN_AT = 2.5;
 /** Standard deviation of a normal distribution over its median absolute deviation. */
 const MAD_TO_SD = 1.4826;
@@ -69,14 +71,20 @@ export function groundThatStandsOut(found: EvidenceField, random: Random): Stand
   return areas.length === 0 ? null : { width: field.width, cellSizeM: field.cellSizeM, parts, areas, farthest, limit };
 }
 
-/** Whether a layer is striped where no other layer has steps: two sensors have no swaths in common. Evening them out leaves seams, which stand out in turn. */
+/**
+ * Whether a layer has swaths: stripes that run through the block. Steps that another layer has too are ground, unless they are too
+ * many and narrow for it: pictures of one flight have their swaths in common. Evening them out leaves seams, which stand out in turn.
+ */
 function hasSwaths(field: EvidenceField, l: number): boolean {
   const layer = field.layers[l]!;
   const stepCells = Math.max(1, PROFILE_STEP_M / field.cellSizeM);
   const pattern = stripePattern(field, layer, stepCells);
   if (!pattern.isStriped) return false;
   const across = (values: Float64Array) => strongestProfile(field, values, { pattern, stepCells });
-  return !stepTogether(across(layer), field.layers.filter((_, other) => other !== l).map(across));
+  const profile = across(layer);
+  const others = field.layers.filter((_, other) => other !== l).map(across);
+  if (stepTogether(profile, others)) return stairShare(profile, Math.floor(NARROWEST_STRIP_M / (stepCells * field.cellSizeM))) < LEAST_EXPLAINED_TOGETHER;
+  return runThrough(field, layer, { pattern, stepCells });
 }
 
 /** Root mean square over the layers of each place's robust deviation from the middle, after averaging over a patch. */

@@ -5,6 +5,7 @@
  * 1979, from memory). Cost: 36 passes over the cells of the mask.
  */
 
+import { correlation } from './agreement.ts';
 import { fittedSurface, withoutSurface } from './covarianceTrend.ts';
 import type { MaskedPlane } from './covariance.ts';
 import { quantileOfSorted } from './quantile.ts';
@@ -57,6 +58,32 @@ export function strongestProfile(plane: MaskedPlane, values: ArrayLike<number>, 
   return { places, means: places.map((step) => sums[step]! / counts[step]!), counts: places.map((step) => counts[step]!) };
 }
 
+/** Correlation between the two halves of a block's stripes that shows that they run through (judgement). */
+const LEAST_LIKENESS = 0.3;
+/** Steps shorter than this share of the longest say little: a corner fills those at the end of its diagonal. */
+const LEAST_LENGTH = 0.5;
+
+/** Whether both halves of each step across the strongest direction show the same profile: ground that stands out lies in one only. */
+export function runThrough(plane: MaskedPlane, values: ArrayLike<number>, { pattern, stepCells }: { pattern: StripePattern; stepCells: number }): boolean {
+  const cells = maskedCells(plane);
+  const direction = pattern.shares.indexOf(pattern.strongest);
+  // A quarter turn on, places across are places along.
+  const along = placesAcross(plane, cells, direction + DIRECTIONS / 2);
+  const { sums, counts, steps } = stepsAcross(plane, { cells, values: along, direction, stepCells });
+  const longest = counts.reduce((most, count) => Math.max(most, count), 0);
+  const totals = [new Float64Array(counts.length), new Float64Array(counts.length)] as const;
+  const halves = [new Float64Array(counts.length), new Float64Array(counts.length)] as const;
+  for (let i = 0; i < cells.length; i++) {
+    const step = steps[i]!;
+    const half = along[i]! * counts[step]! < sums[step]! ? 0 : 1;
+    totals[half][step] = totals[half][step]! + values[cells[i]!]!;
+    halves[half][step] = halves[half][step]! + 1;
+  }
+  const long = [...counts.keys()].filter((step) => counts[step]! >= LEAST_LENGTH * longest && halves[0][step]! > 0 && halves[1][step]! > 0);
+  const profile = (half: 0 | 1) => Float64Array.from(long, (step) => totals[half][step]! / halves[half][step]!);
+  return correlation(profile(0), profile(1)) >= LEAST_LIKENESS;
+}
+
 function maskedCells({ mask }: MaskedPlane): Uint32Array {
   const cells: number[] = [];
   for (let cell = 0; cell < mask.length; cell++) if (mask[cell] === 1) cells.push(cell);
@@ -82,6 +109,12 @@ function levelAcross(plane: MaskedPlane, input: ProfileInput): Float64Array {
   const levels = new Float64Array(steps.length);
   for (let i = 0; i < levels.length; i++) levels[i] = sums[steps[i]!]! / counts[steps[i]!]!;
   return levels;
+}
+
+/** Places of the cells across a direction, in cells from the corner of the plane. */
+function placesAcross({ width }: MaskedPlane, cells: Uint32Array, direction: number): Float64Array {
+  const angle = (direction * Math.PI) / DIRECTIONS;
+  return Float64Array.from(cells, (cell) => (cell % width) * Math.cos(angle) + Math.floor(cell / width) * Math.sin(angle));
 }
 
 /** Sum and number of cells of each step across the direction, and the step of each cell; steps are counted from the outermost cell. */

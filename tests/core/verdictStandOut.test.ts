@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { adjustedRandIndex } from '../../shared/analysis/agreement.ts';
 import { gridOfOutline, type Grid } from '../../shared/analysis/grid.ts';
-import { seededRandom } from '../../shared/analysis/random.ts';
+import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { evidenceField } from '../../shared/analysis/verdictField.ts';
 import { groundThatStandsOut, zonesThatShow } from '../../shared/analysis/verdictStandOut.ts';
 import { makeZoning } from '../../shared/analysis/zoning.ts';
@@ -68,6 +68,48 @@ describe('a strip of five rows and a corner of a twenty-fifth', () => {
     const { grid, truth } = strangeBlock(140, 140, { stripM: 17.5, cornerM: 0 });
     const { verdict } = makeZoning({ grid, layers: layersOf(grid, truth, { levels: [[0, 0, -2.5, 0], [0, 0, 0, 0]], seed: 3 }) });
     expect(verdict.verdict).toBe('one');
+  });
+});
+
+describe('stripes and what only looks like them', () => {
+  const square = (side: number) => gridOfOutline([[[[0, 0], [side, 0], [side, side], [0, side], [0, 0]]]], 32631, 3);
+  const evidence = (grid: Grid, layers: readonly Float64Array[]) => evidenceField(grid, layers.map((layer) => Float32Array.from(layer)), { mostCells: 2500 });
+  const east = (grid: Grid, cell: number) => ((cell % grid.cols) + 0.5) * grid.cellSizeM;
+  const south = (grid: Grid, cell: number) => (Math.floor(cell / grid.cols) + 0.5) * grid.cellSizeM;
+  const form = (grid: Grid, valueAt: (x: number, y: number) => number) => Float64Array.from(grid.inside, (_, cell) => valueAt(east(grid, cell), south(grid, cell)));
+  /** Swaths with levels of their own, across a direction between two of the 36. */
+  const swaths = (grid: Grid, widthM: number, seed: number) => {
+    const random = seededRandom(seed);
+    const levels = Array.from({ length: 1000 }, () => 2 * randomNormal(random));
+    return form(grid, (x, y) => levels[500 + Math.floor((x * Math.cos(0.57) + y * Math.sin(0.57)) / widthM)]!);
+  };
+  const seeds = [11, 12, 13, 14];
+
+  it('a corner of 40 m in one layer alone of 20 ha is seen, though rows and columns through it stand out of all directions', () => {
+    const grid = square(447);
+    for (const seed of seeds) {
+      const random = seededRandom(seed);
+      const field = evidence(grid, [added(whiteField(grid, random), form(grid, (x, y) => (x < 40 && y < 40 ? 8 : 0)), 1), whiteField(grid, random)]);
+      expect(groundThatStandsOut(field, seededRandom(1))?.areas).toHaveLength(1);
+    }
+  });
+
+  it.each([3, 6, 10])('swaths of %i m that two layers of one flight have in common are none', (widthM) => {
+    const grid = square(141);
+    for (const seed of seeds) {
+      const random = seededRandom(seed);
+      const shared = swaths(grid, widthM, seed);
+      expect(groundThatStandsOut(evidence(grid, [added(whiteField(grid, random), shared, 1), added(whiteField(grid, random), shared, 1)]), seededRandom(1))).toBeNull();
+    }
+  });
+
+  it.each([[141, 12.5], [141, 17.5], [447, 12.5]])('on a side of %i m a strip of %d m in two layers is ground', (side, stripM) => {
+    const grid = square(side);
+    for (const seed of seeds) {
+      const random = seededRandom(seed);
+      const strip = form(grid, (x) => (x > 0.6 * side && x < 0.6 * side + stripM ? 6 : 0));
+      expect(groundThatStandsOut(evidence(grid, [added(whiteField(grid, random), strip, 1), added(whiteField(grid, random), strip, 1)]), seededRandom(1))).not.toBeNull();
+    }
   });
 });
 

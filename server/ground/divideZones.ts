@@ -23,6 +23,8 @@ export interface DivideZonesInput {
   rows: RowsXY;
   vines: VineTable;
   zoneOf: Uint8Array;
+  /** Not 0 for vines that a mean speaks for; empty places and young vines are no part of a count. */
+  bearing: Uint8Array;
   /** Number that the second part would take. */
   newZone: number;
   /** Layers of numbers on the cells of the grid. */
@@ -54,7 +56,7 @@ interface LayerOnVines {
 }
 
 function divideZone(input: DivideZonesInput, layers: readonly LayerOnVines[], { zone, demand, readings }: ZoneToDivide): DividedZone | null {
-  const ofZone = [...input.zoneOf.keys()].filter((vine) => input.zoneOf[vine] === zone);
+  const ofZone = [...input.zoneOf.keys()].filter((vine) => input.zoneOf[vine] === zone && input.bearing[vine] !== 0);
   const cuts = layers.flatMap((layer) => {
     const located = readings.flatMap((reading) => (Number.isNaN(layer.atVines[reading.vine]!) ? [] : [{ ...reading, layer: layer.atVines[reading.vine]! }]));
     const layerAtVines = ofZone.map((vine) => layer.atVines[vine]!).filter((value) => !Number.isNaN(value));

@@ -8,7 +8,7 @@ import type { Demand } from '../../../shared/sampling/divideZone.ts';
 import { answerPlan, type PlanAnswer } from '../../../shared/sampling/plan.ts';
 import { membersOf } from '../../../shared/sampling/pooledZones.ts';
 import type { Access } from '../../access/access.ts';
-import { gridOf } from '../../ground/blockVines.ts';
+import { gridOf, isBearing } from '../../ground/blockVines.ts';
 import type { DividedZone, DivideZonesInput } from '../../ground/divideZones.ts';
 import { zonedReadings } from '../../ground/zonedReadings.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
@@ -36,7 +36,7 @@ export async function divisionsOf(access: Access, zoningId: string, choices: Pla
   const usable = readings.filter(({ vine, excludedReason, state }) => vine >= 0 && excludedReason === null && state !== 'provisional');
   const newZone = Math.max(...basis.zones.map(({ number }) => number)) + 1;
   const input: DivideZonesInput = {
-    grid: gridOf(ground), labels: decodeLabels(zoning.labels!) as Labels, rows: ground.rows, vines: ground.vines, zoneOf, newZone, layers,
+    grid: gridOf(ground), labels: decodeLabels(zoning.labels!) as Labels, rows: ground.rows, vines: ground.vines, zoneOf, newZone, layers, bearing: Uint8Array.from(ground.states, (state) => (isBearing(state) ? 1 : 0)),
     zones: driven.map(({ zone, at, code }) => ({
       zone, demand: demandOf({ answer, choices, basis }, at, code),
       readings: usable.filter((reading) => reading.zone === zone && reading.measureCode === code).map(({ value, visit, vine }) => ({ value, visit, vine })),

@@ -111,6 +111,19 @@ describe('number field', () => {
     expect(wrapper.find('[role=alert]').exists()).toBe(false);
   });
 
+  it('never writes a figure that was typed as another one, and rounds what was reckoned', async () => {
+    for (const [typed, shown] of [['0,25', '0.25'], ['0.01', '0.01'], ['0.001', '0.001'], ['0.00004', '0.00004'], ['5.0649', '5.1'], ['12', '12.0'], ['0', '0.0']] as const) {
+      wrapper = await field({});
+      await wrapper.find('input').setValue(typed);
+      await wrapper.find('input').trigger('change');
+      expect((wrapper.find('input').element as HTMLInputElement).value).toBe(shown);
+      wrapper.unmount();
+    }
+    wrapper = await field({ min: 0.01 });
+    await wrapper.find('input').setValue('0');
+    expect(textOf(wrapper.find('[role=alert]').element)).toBe('At least 0.01.');
+  });
+
   it('writes numbers the way of the language', async () => {
     wrapper = await mountWithTexts(NumberField, { language: 'fr', props: { modelValue: 4140.5, label: 'x', decimals: 1 } });
     expect((wrapper.find('input').element as HTMLInputElement).value).toBe(`4${thinSpace}140,5`);

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import PaperLines from '../../src/components/field/PaperLines.vue';
 import ConflictCard from '../../src/components/field/ConflictCard.vue';
 import { emptyDraft } from '../../src/components/field/paperDraft.ts';
+import { findingEntry, photoEntry } from '../../src/offline/newEntry.ts';
 import { proposedVines } from '../../src/lib/stripRows.ts';
 import type { ConflictCard as Card } from '../../shared/contracts/conflicts.ts';
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
@@ -43,5 +44,13 @@ describe('a vine on screen', () => {
     const [lon, lat] = proposedVines({ ...block, withoutRows: true }, rows)[0]!.place!;
     expect(lon).toBeCloseTo(3.101, 5);
     expect(lat).toBeCloseTo(43.2502 + 0.5 / 111_100, 5);
+  });
+
+  it('keeps where it stands with what was typed or photographed there, for the phone’s own lists', () => {
+    const walk = { estateId: 'e', personId: 'p', round: roundOf(vine) };
+    const at = (place?: [number, number]) => ({ stop: stop as never, vine: { ...stop, place, isReserve: false } });
+    expect(findingEntry(walk, at(vine), { state: 'missing', readBy: null }).place).toEqual(vine);
+    expect(photoEntry(walk, at(vine), { picture: new Blob(), note: '' })).toMatchObject({ place: vine, row: '4', vine: 7, received: 0 });
+    expect(findingEntry(walk, at(), { state: 'missing', readBy: null })).not.toHaveProperty('place');
   });
 });

@@ -114,7 +114,20 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
   const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
-  router.use(estateRoutes(), peopleRoutes({ publicUrl }), recordRoutes(), jobRoutes(), blockRoutes(), importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }), layerRoutes(), measureRoutes(), restrictionRoutes(), readingRoutes(), lotRoutes(), zoningRoutes());
+  router.use(
+    estateRoutes(),
+    peopleRoutes({ publicUrl }),
+    recordRoutes(),
+    jobRoutes(),
+    blockRoutes(),
+    importRoutes({ receive: receiveFiles(config.uploadLimitBytes), receiveInPieces: receiveInPieces(config.uploadLimitBytes) }),
+    layerRoutes(),
+    measureRoutes(),
+    restrictionRoutes(),
+    readingRoutes(),
+    lotRoutes(),
+    zoningRoutes(),
+  );
   router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }), earlierRoutes({ receive: receiveFiles(labFileBytes) }));
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
   router.use(harvestRoutes({ publicUrl }), weatherRoutes());

@@ -109,7 +109,10 @@ async function fromTable({ grid, middleLonLat }: Block, argument: LayerArgument)
   const { questions, warnings, numbers, pointsLonLat } = await readPoints(argument.path, options);
   requireAnswered(options.fileName, questions);
   const value = numbers.get(argument.options.value ?? '');
-  if (value === undefined) throw new BadInput(`${options.fileName}: ${argument.options.value === undefined ? 'it is not said which column holds the value' : `it has no column "${argument.options.value}" of numbers`}; give #value= one of ${[...numbers.keys()].join(', ')}.`);
+  if (value === undefined)
+    throw new BadInput(
+      `${options.fileName}: ${argument.options.value === undefined ? 'it is not said which column holds the value' : `it has no column "${argument.options.value}" of numbers`}; give #value= one of ${[...numbers.keys()].join(', ')}.`,
+    );
   const points = await spread(grid, { lonLat: pointsLonLat, value }, argument);
   return { ...points, notes: [...warnings.map(({ text }) => text), ...points.notes] };
 }

@@ -87,7 +87,13 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}${texts.colon}${targets}`).join('   '), { width });
   drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
-  const handfuls = round.measures.flatMap(({ handful, ...measure }) => (handful ? [`${headOf(measure, language)}${texts.colon}${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`] : []));
+  const handfuls = round.measures.flatMap(({ handful, ...measure }) =>
+    handful
+      ? [
+          `${headOf(measure, language)}${texts.colon}${handful.perVine} ${texts.clusters}${handful.perCluster === null ? '' : `, ${handful.perCluster} ${texts.berries}`}`,
+        ]
+      : [],
+  );
   const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
   if (inBag.length > 0) pdf.text(`${texts.bag}${texts.colon}${inBag.join(', ')}`, { width });
   if (handfuls.length > 0) pdf.text(`${texts.ofEach}${texts.colon}${handfuls.join('; ')}`, { width });
@@ -122,7 +128,16 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   const told = (time: string) => moment.format(new Date(time));
   // The whole of the estate's day: the sheet is printed before and carried until evening.
   const closed = restrictionsWithin(round.restrictions, { ...dayBounds(timeZone, round.onDate), rowIds: round.stops.map(({ rowId }) => rowId) });
-  for (const { startsAt, endsAt, product, labelInterval, setBy } of closed) pdf.font('Helvetica-Bold').fontSize(14).text(`${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}${texts.colon}${product}, ${setBy}; ${labelInterval})`, edge, pdf.y, { width });
+  for (const { startsAt, endsAt, product, labelInterval, setBy } of closed)
+    pdf
+      .font('Helvetica-Bold')
+      .fontSize(14)
+      .text(
+        `${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}${texts.colon}${product}, ${setBy}; ${labelInterval})`,
+        edge,
+        pdf.y,
+        { width },
+      );
   if (closed.length === 0) pdf.font('Helvetica').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
   // A paper does not learn of what is typed later: it says of when it speaks.
   pdf.font('Helvetica').fontSize(9).text(closed.length === 0 ? texts.law : `${texts.asOf} ${told(round.checkedAt)}. ${texts.law}`, { width });

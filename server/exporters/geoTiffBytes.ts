@@ -68,7 +68,10 @@ const inXml: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', 
 const escaped = (text: string) => text.replace(/[&<>"]/g, (sign) => inXml[sign]!);
 
 function bandMetadata(bands: readonly { name: string; unit: string }[]): string {
-  const items = bands.flatMap(({ name, unit }, band) => [`<Item name="DESCRIPTION" sample="${band}" role="description">${escaped(name)}</Item>`, ...(unit === '' ? [] : [`<Item name="UNITTYPE" sample="${band}" role="unittype">${escaped(unit)}</Item>`])]);
+  const items = bands.flatMap(({ name, unit }, band) => [
+    `<Item name="DESCRIPTION" sample="${band}" role="description">${escaped(name)}</Item>`,
+    ...(unit === '' ? [] : [`<Item name="UNITTYPE" sample="${band}" role="unittype">${escaped(unit)}</Item>`]),
+  ]);
   return `<GDALMetadata>${items.join('')}</GDALMetadata>`;
 }
 

@@ -25,7 +25,16 @@ export async function restrictionViews(estateId: string, rows: EntryRestriction[
     note: row.note,
     setBy: nameOf(people, row.setBy),
     lifted: row.liftedAt ? { at: row.liftedAt.toISOString(), by: nameOf(people, row.liftedBy), reason: row.liftedReason ?? '' } : null,
-    pickChanges: changes.filter(({ restrictionId }) => restrictionId === row.id).map(({ changedAt, changedBy, reason, basis, dayBefore, dayAfter }) => ({ at: changedAt.toISOString(), by: nameOf(people, changedBy), reason, basis, before: dayBefore, after: dayAfter })),
+    pickChanges: changes
+      .filter(({ restrictionId }) => restrictionId === row.id)
+      .map(({ changedAt, changedBy, reason, basis, dayBefore, dayAfter }) => ({
+        at: changedAt.toISOString(),
+        by: nameOf(people, changedBy),
+        reason,
+        basis,
+        before: dayBefore,
+        after: dayAfter,
+      })),
     inForce: row.liftedAt === null && row.startsAt <= now && row.endsAt > now,
   }));
 }

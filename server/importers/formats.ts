@@ -70,7 +70,14 @@ function sniffContents(source: ByteSource, fileName: string): Sniffed {
 
 function unreadable({ format, foreignName }: Sniffed, file: string): ImportProblem {
   if (format === 'empty') return new ImportProblem({ code: 'empty', fact: 'The file is empty.', remedy: 'Export or copy it again.', file });
-  if (format === 'shapefile-part') return new ImportProblem({ code: 'missing-part', fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.', remedy: 'Send all parts with the same name together, or packed into one ZIP.', params: { why: 'shapefile-part' }, file });
+  if (format === 'shapefile-part')
+    return new ImportProblem({
+      code: 'missing-part',
+      fact: 'It is one part of a shapefile; a shapefile has at least .shp, .shx and .dbf.',
+      remedy: 'Send all parts with the same name together, or packed into one ZIP.',
+      params: { why: 'shapefile-part' },
+      file,
+    });
   const found = foreignName ?? 'XML of a kind that is not read';
   const remedy = 'Send a GeoTIFF, a zipped shapefile, GeoPackage, GeoJSON, KML, KMZ, GPX or CSV.';
   return new ImportProblem({ code: 'wrong-type', fact: `It is ${found}.`, remedy, params: { why: foreignKind(found), found }, file });

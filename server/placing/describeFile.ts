@@ -33,7 +33,13 @@ function requireValues(understood: Awaited<ReturnType<typeof understandFile>>, f
   const fields = understood.kind === 'points' ? understood.columns.filter(({ name }) => name !== understood.position?.first && name !== understood.position?.second) : understood.layers.flatMap((layer) => layer.fields);
   if (!isPoints || fields.some(({ kind }) => kind === 'number') || (understood.kind === 'points' && understood.reference === null)) return;
   const listed = fields.slice(0, 6).map(({ name }) => name).join(', ').slice(0, 120);
-  throw new ImportProblem({ code: 'no-values', fact: `It holds points without a number to map${listed === '' ? '' : ` (it has ${listed})`}.`, remedy: 'Add a column with what was measured, such as conductivity.', params: { why: 'no-number', listed }, file });
+  throw new ImportProblem({
+    code: 'no-values',
+    fact: `It holds points without a number to map${listed === '' ? '' : ` (it has ${listed})`}.`,
+    remedy: 'Add a column with what was measured, such as conductivity.',
+    params: { why: 'no-number', listed },
+    file,
+  });
 }
 
 function repairNotes(understood: Awaited<ReturnType<typeof understandFile>>): ImportNote[] {

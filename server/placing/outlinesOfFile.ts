@@ -19,7 +19,13 @@ export async function outlinesOfFile(source: SourceFile): Promise<OfferedOutline
   const areas = (layer?.featuresLonLat.features ?? []).flatMap((feature) => areaOf(feature) ?? []);
   if (areas.length === 0) throw new ImportProblem({ code: 'bad-geometry', fact: 'It holds no outlines, only points or open lines.', remedy: 'Send areas, or lines that end where they begin.', file: source.fileName });
   if (areas.length > mostOutlines) {
-    throw new ImportProblem({ code: 'too-large', fact: `It holds ${areas.length} outlines; ${mostOutlines} is the most at once.`, remedy: 'Send only those of the estate.', params: { why: 'many-outlines', outlines: areas.length, most: mostOutlines }, file: source.fileName });
+    throw new ImportProblem({
+      code: 'too-large',
+      fact: `It holds ${areas.length} outlines; ${mostOutlines} is the most at once.`,
+      remedy: 'Send only those of the estate.',
+      params: { why: 'many-outlines', outlines: areas.length, most: mostOutlines },
+      file: source.fileName,
+    });
   }
   return areas.map(({ geometry, properties, id }, index) => {
     const repair = understood.repairs.find((each) => each.layer === layer!.name && each.feature === id);

@@ -73,7 +73,16 @@ function rasterType(answers: ImportAnswers): string {
 function quantityOf(understood: RasterUnderstood, answers: ImportAnswers): RasterQuantity {
   const index = indexOf({ file: summaryOf(understood), answers });
   if (index !== null) {
-    return { kind: 'index', index, bands: { ...(answers.nirBand ? { nir: answers.nirBand } : {}), ...(answers.redBand ? { red: answers.redBand } : {}), ...(answers.greenBand ? { green: answers.greenBand } : {}), ...(answers.redEdgeBand ? { redEdge: answers.redEdgeBand } : {}) } };
+    return {
+      kind: 'index',
+      index,
+      bands: {
+        ...(answers.nirBand ? { nir: answers.nirBand } : {}),
+        ...(answers.redBand ? { red: answers.redBand } : {}),
+        ...(answers.greenBand ? { green: answers.greenBand } : {}),
+        ...(answers.redEdgeBand ? { redEdge: answers.redEdgeBand } : {}),
+      },
+    };
   }
   const method = answers.purpose === 'elevation' ? 'surface' : answers.soilAs === 'classes' ? 'nearest' : 'mean';
   return { kind: 'band', band: answers.band ?? understood.bands[0]!.index, method };
@@ -94,7 +103,16 @@ function layerOf({ understood, answers, blocks, grids, readings }: Placing, type
     ...heightFacts(understood, answers),
   }));
   const unit = type === 'soilNumber' ? (answers.unit ?? '') : layerType(type).unit;
-  return { type, derivedFrom: null, unit, value: index ?? (understood.bands.length > 1 ? `band ${answers.band}` : null), classes: type === 'soilClass' ? classesOf(placed) : null, pixelSizeM: understood.pixelSizeM, reference: understood.crsName, blocks: placed };
+  return {
+    type,
+    derivedFrom: null,
+    unit,
+    value: index ?? (understood.bands.length > 1 ? `band ${answers.band}` : null),
+    classes: type === 'soilClass' ? classesOf(placed) : null,
+    pixelSizeM: understood.pixelSizeM,
+    reference: understood.crsName,
+    blocks: placed,
+  };
 }
 
 /** What file and person say about the unit of heights. */
@@ -126,6 +144,12 @@ function classesOf(placed: readonly PlacedCells[]): LayerClass[] {
   const codes = [...new Set(placed.flatMap((block) => (block.statistics.classes ?? []).map((entry) => entry.value)))].sort((a, b) => a - b);
   const odd = codes.find((code) => !Number.isInteger(code));
   if (odd !== undefined) throw new ImportProblem({ code: 'bad-request', fact: `Its values are measurements (${odd}), not class numbers.`, remedy: 'Take it as numbers instead of classes.', params: { why: 'not-classes', value: odd } });
-  if (codes.length > mostClasses) throw new ImportProblem({ code: 'bad-request', fact: `It has ${codes.length} different class numbers over the blocks; ${mostClasses} is the most.`, remedy: 'Take it as numbers instead of classes, or merge classes first.', params: { why: 'many-classes', classes: codes.length, most: mostClasses } });
+  if (codes.length > mostClasses)
+    throw new ImportProblem({
+      code: 'bad-request',
+      fact: `It has ${codes.length} different class numbers over the blocks; ${mostClasses} is the most.`,
+      remedy: 'Take it as numbers instead of classes, or merge classes first.',
+      params: { why: 'many-classes', classes: codes.length, most: mostClasses },
+    });
   return codes.map((value) => ({ value, name: String(value), colour: null }));
 }

@@ -62,7 +62,13 @@ function classLayer(input: PlaceInput, areas: readonly ValuedArea[], { field, un
   const named = areas.map(({ polygons, value }) => ({ polygons, value: value === null || value === undefined || value === '' ? null : String(value).trim().slice(0, 80) }));
   const names = [...new Set(named.flatMap(({ value }) => value ?? []))].sort();
   if (names.length > mostClasses) {
-    throw new ImportProblem({ code: 'bad-request', fact: `The field ${field} has ${names.length} different classes; ${mostClasses} is the most.`, remedy: 'Choose another field, or take it as numbers.', params: { why: 'many-classes', field, classes: names.length, most: mostClasses }, file: input.source.fileName });
+    throw new ImportProblem({
+      code: 'bad-request',
+      fact: `The field ${field} has ${names.length} different classes; ${mostClasses} is the most.`,
+      remedy: 'Choose another field, or take it as numbers.',
+      params: { why: 'many-classes', field, classes: names.length, most: mostClasses },
+      file: input.source.fileName,
+    });
   }
   const cellsOf = (grid: Grid) => polygonClasses(grid, onGrid(grid, named) as ValuedPolygons<string>[]).cells;
   return layer(input, { type: 'soilClass', cellsOf, classes: names.map((name, value) => ({ value, name, colour: null })), field, understood });

@@ -41,7 +41,14 @@ export async function rowsOfFile({ source, blocks }: { source: SourceFile; block
     const own = lines.filter(({ line }) => booleanPointInPolygon(middleOf(line), area));
     return own.length === 0 ? [] : [rowsOn(block, own, source.fileName)];
   });
-  if (found.length === 0) throw new ImportProblem({ code: 'not-overlapping', fact: `None of its ${lines.length} lines lies on a block.`, remedy: 'Check that it is the right file, and that its reference system is the one it names.', params: { why: 'lines-elsewhere' }, file: source.fileName });
+  if (found.length === 0)
+    throw new ImportProblem({
+      code: 'not-overlapping',
+      fact: `None of its ${lines.length} lines lies on a block.`,
+      remedy: 'Check that it is the right file, and that its reference system is the one it names.',
+      params: { why: 'lines-elsewhere' },
+      file: source.fileName,
+    });
   return found;
 }
 
@@ -51,7 +58,13 @@ const spacings = [0.5, 12] as const;
 function rowsOn({ id, boundary, epsg, vineSpacingM }: RowBlock, lines: readonly RowLine[], file: string): RowsOnBlock {
   const made = importRows(lines, { vineSpacingM, epsg });
   if (made.rowSpacingM < spacings[0] || made.rowSpacingM > spacings[1]) {
-    throw new ImportProblem({ code: 'bad-geometry', fact: `Its lines lie ${made.rowSpacingM.toFixed(1)} m apart; rows of vines lie ${spacings[0]} to ${spacings[1]} m apart.`, remedy: 'Send one line for each row.', params: { why: 'line-spacing', spacingM: made.rowSpacingM }, file });
+    throw new ImportProblem({
+      code: 'bad-geometry',
+      fact: `Its lines lie ${made.rowSpacingM.toFixed(1)} m apart; rows of vines lie ${spacings[0]} to ${spacings[1]} m apart.`,
+      remedy: 'Send one line for each row.',
+      params: { why: 'line-spacing', spacingM: made.rowSpacingM },
+      file,
+    });
   }
   const convergence = convergenceDeg(ringMiddle(boundary[0]![0]!), epsg);
   return {

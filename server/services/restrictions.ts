@@ -47,7 +47,15 @@ export async function liftRestriction(access: Access, restrictionId: string, opt
     if (row.endsAt <= options.now) throw new Clash('over', say('restrictionOver'));
     await row.$query(trx).patch({ liftedAt: options.now, liftedBy: access.personId, liftedReason: options.reason });
     await tellLifted(access, row, options.reason, trx);
-    await writeAudit(trx, access, { action: 'restrictions.lift', subjectType: 'block', subjectId: row.blockId, subjectName: row.product, before: { endsAt: row.endsAt.toISOString() }, after: { liftedAt: options.now.toISOString(), noPickBefore: row.noPickBefore }, reason: options.reason });
+    await writeAudit(trx, access, {
+      action: 'restrictions.lift',
+      subjectType: 'block',
+      subjectId: row.blockId,
+      subjectName: row.product,
+      before: { endsAt: row.endsAt.toISOString() },
+      after: { liftedAt: options.now.toISOString(), noPickBefore: row.noPickBefore },
+      reason: options.reason,
+    });
   });
 }
 
@@ -79,7 +87,15 @@ async function tellEverybody(access: Access, blockName: string, input: NewRestri
       estateId: access.estateId,
       kind: 'restriction',
       to: { address: reader.email!, name: reader.name, language: reader.language },
-      facts: { estate: estate.name, block: blockName, until: localTime(input.endsAt, estate.timeZone, reader.language), product: input.product, interval: input.labelInterval, setter: deedBy.name, lifters: new Intl.ListFormat(reader.language, { type: 'disjunction' }).format(lifters) },
+      facts: {
+        estate: estate.name,
+        block: blockName,
+        until: localTime(input.endsAt, estate.timeZone, reader.language),
+        product: input.product,
+        interval: input.labelInterval,
+        setter: deedBy.name,
+        lifters: new Intl.ListFormat(reader.language, { type: 'disjunction' }).format(lifters),
+      },
     });
   }
 }

@@ -58,18 +58,36 @@ async function zones({ estateId }: Access): Promise<Found[]> {
 }
 
 async function lots({ estateId }: Access): Promise<Found[]> {
-  const rows = await Lot.query().alias('l').joinRaw('join scenarios s on s.estate_id = l.estate_id and s.id = l.scenario_id and s.is_live').where('l.estateId', estateId).orderBy('l.createdAt', 'desc').limit(lookedThrough).select('l.id', 'l.name', 'l.pickOn');
+  const rows = await Lot.query()
+    .alias('l')
+    .joinRaw('join scenarios s on s.estate_id = l.estate_id and s.id = l.scenario_id and s.is_live')
+    .where('l.estateId', estateId)
+    .orderBy('l.createdAt', 'desc')
+    .limit(lookedThrough)
+    .select('l.id', 'l.name', 'l.pickOn');
   return rows.map(({ id, name, pickOn }) => ({ kind: 'lot', id, name, about: pickOn ?? '', to: id }));
 }
 
 async function people({ estateId }: Access): Promise<Found[]> {
-  const rows = (await Membership.query().alias('m').join('people as p', 'p.id', 'm.personId').where('m.estateId', estateId).distinct('p.id', 'p.name', 'p.email').orderBy('p.name').limit(lookedThrough)) as unknown as { id: string; name: string; email: string | null }[];
+  const rows = (await Membership.query()
+    .alias('m')
+    .join('people as p', 'p.id', 'm.personId')
+    .where('m.estateId', estateId)
+    .distinct('p.id', 'p.name', 'p.email')
+    .orderBy('p.name')
+    .limit(lookedThrough)) as unknown as { id: string; name: string; email: string | null }[];
   return rows.map(({ id, name, email }) => ({ kind: 'person', id, name, about: email ?? '', to: id }));
 }
 
 /** Rounds by block and day; who walks rounds and plans none finds their own. */
 async function rounds({ estateId, personId, roles }: Access): Promise<Found[]> {
-  const query = Round.query().alias('r').joinRaw('join blocks b on b.estate_id = r.estate_id and b.id = r.block_id').where('r.estateId', estateId).orderBy('r.onDate', 'desc').limit(lookedThrough).select('r.id', 'r.planId', 'r.onDate', 'b.name as blockName');
+  const query = Round.query()
+    .alias('r')
+    .joinRaw('join blocks b on b.estate_id = r.estate_id and b.id = r.block_id')
+    .where('r.estateId', estateId)
+    .orderBy('r.onDate', 'desc')
+    .limit(lookedThrough)
+    .select('r.id', 'r.planId', 'r.onDate', 'b.name as blockName');
   const ownOnly = !may(roles, 'plans.margins', 'propose');
   if (ownOnly) query.whereIn('r.id', RoundPerson.query().where({ estateId, personId }).select('roundId'));
   return ((await query) as (Round & { blockName: string })[]).map(({ id, planId, onDate, blockName }) => ({ kind: 'round', id, name: blockName, about: onDate, to: ownOnly ? id : planId }));

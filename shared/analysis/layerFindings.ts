@@ -145,7 +145,12 @@ function striped({ grid, cells, stats, facts }: Judged): PlacedFinding | null {
   if (stripes === null) return null;
   const off = Math.abs(((stripes.bearingDeg - (facts.rowBearingDeg ?? NaN) + 270) % 180) - 90);
   const isBeat = layerType(facts.type).showsRows && stripes.widthM < widestBeatM;
-  return { code: isBeat ? 'rowBeat' : off <= alongRowsDeg ? 'stripesAlongRows' : 'stripes', severity: 'amber', params: { bearing: stripes.bearingDeg, widthM: Math.round(stripes.widthM), percent: Math.round(stripes.share * 100) }, cells: stripes.cells };
+  return {
+    code: isBeat ? 'rowBeat' : off <= alongRowsDeg ? 'stripesAlongRows' : 'stripes',
+    severity: 'amber',
+    params: { bearing: stripes.bearingDeg, widthM: Math.round(stripes.widthM), percent: Math.round(stripes.share * 100) },
+    cells: stripes.cells,
+  };
 }
 
 /** A vigour picture describes the season when the canopy is full, from fruit set to veraison and ripeness (common practice). */
@@ -192,7 +197,18 @@ function impossible({ grid, cells, stats, facts }: Judged): PlacedFinding | null
   if (stats.n === 0 || (stats.min! >= min && stats.max! <= max)) return null;
   const marked = Uint8Array.from(cells, (value, cell) => (grid.inside[cell] === 1 && (value < min || value > max) ? 1 : 0));
   const count = countOf(marked);
-  return { code: 'impossible', severity: 'red', params: { count, percent: Math.ceil((100 * count) / stats.n), value: stats.min! < min ? stats.min! : stats.max!, ...(Number.isFinite(min) ? { min } : {}), ...(Number.isFinite(max) ? { max } : {}) }, cells: marked };
+  return {
+    code: 'impossible',
+    severity: 'red',
+    params: {
+      count,
+      percent: Math.ceil((100 * count) / stats.n),
+      value: stats.min! < min ? stats.min! : stats.max!,
+      ...(Number.isFinite(min) ? { min } : {}),
+      ...(Number.isFinite(max) ? { max } : {}),
+    },
+    cells: marked,
+  };
 }
 
 function rangeOf({ type, index }: LayerFacts): readonly [number, number] {

@@ -22,7 +22,26 @@ export interface ReadTicket {
 }
 
 export type TicketQuestion = 'dateOrder' | 'decimalMark' | 'unit';
-export type TicketProblemCode = 'empty' | 'tooMany' | 'noNumberColumn' | 'noLotColumn' | 'noWeightColumn' | 'noDayColumn' | 'noTicketNo' | 'unknownLot' | 'noWeight' | 'tareAbove' | 'netDiffers' | 'noDay' | 'noTime' | 'outOfSeason' | 'tooHeavy' | 'longNumber' | 'twice' | 'known' | 'unknownUnit';
+export type TicketProblemCode =
+  | 'empty'
+  | 'tooMany'
+  | 'noNumberColumn'
+  | 'noLotColumn'
+  | 'noWeightColumn'
+  | 'noDayColumn'
+  | 'noTicketNo'
+  | 'unknownLot'
+  | 'noWeight'
+  | 'tareAbove'
+  | 'netDiffers'
+  | 'noDay'
+  | 'noTime'
+  | 'outOfSeason'
+  | 'tooHeavy'
+  | 'longNumber'
+  | 'twice'
+  | 'known'
+  | 'unknownUnit';
 export interface TicketProblem {
   readonly code: TicketProblemCode;
   readonly line: number | null;

@@ -4,7 +4,20 @@ import { labFileQuestion } from './lab.ts';
 
 const params = z.record(z.string(), z.union([z.string(), z.number()]));
 
-export const earlierExample = z.object({ line: z.int(), blockName: z.string(), rowLabel: z.string(), vineNumber: z.int(), place: lonLat.optional(), metres: z.number().nullable(), day: z.string(), measure: z.string(), value: z.number(), typed: z.string(), unitTyped: z.string(), odd: z.boolean() });
+export const earlierExample = z.object({
+  line: z.int(),
+  blockName: z.string(),
+  rowLabel: z.string(),
+  vineNumber: z.int(),
+  place: lonLat.optional(),
+  metres: z.number().nullable(),
+  day: z.string(),
+  measure: z.string(),
+  value: z.number(),
+  typed: z.string(),
+  unitTyped: z.string(),
+  odd: z.boolean(),
+});
 
 /** What would be stored of a table, or was. */
 export const earlierSummary = z.object({

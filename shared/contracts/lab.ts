@@ -91,7 +91,18 @@ export const labFileQuestion = z.object({
   key: z.string(), code: z.string(), params, answer: z.string().nullable(), suggestion: z.string().nullable(),
   choices: z.array(z.object({ value: z.string(), label: z.string().nullable() })),
 });
-export const labFileEntry = z.object({ line: z.number().int(), code: z.string(), measure: z.string(), value: z.number(), below: z.boolean(), typed: z.string(), unitTyped: z.string(), analysedOn: z.string().nullable(), odd: z.boolean(), corrected: z.boolean() });
+export const labFileEntry = z.object({
+  line: z.number().int(),
+  code: z.string(),
+  measure: z.string(),
+  value: z.number(),
+  below: z.boolean(),
+  typed: z.string(),
+  unitTyped: z.string(),
+  analysedOn: z.string().nullable(),
+  odd: z.boolean(),
+  corrected: z.boolean(),
+});
 export const labFileView = z.object({
   id,
   fileName: z.string(),

@@ -92,7 +92,15 @@ export const blockLayerView = z.object({
   classes: z.array(layerClass).nullable(),
   gridKey: z.string(),
   derivedFrom: id.nullable(),
-  source: z.object({ fileId: id.nullable(), fileName: z.string().nullable(), sha256: z.string().nullable(), value: z.string().nullable(), pixelSizeM: z.number().nullable(), reference: z.string().nullable(), answers: z.record(z.string(), z.unknown()) }),
+  source: z.object({
+    fileId: id.nullable(),
+    fileName: z.string().nullable(),
+    sha256: z.string().nullable(),
+    value: z.string().nullable(),
+    pixelSizeM: z.number().nullable(),
+    reference: z.string().nullable(),
+    answers: z.record(z.string(), z.unknown()),
+  }),
   createdBy: z.string().nullable(),
   createdAt: z.string(),
 });

@@ -52,7 +52,23 @@ export const lotZone = z.object({
 });
 export type LotZone = z.infer<typeof lotZone>;
 
-export const lotLine = z.object({ zoneId: id.nullable(), blockId: id, blockName: z.string(), number: z.number().int(), zoneCount: z.number().int(), name: z.string(), vines: z.number().int(), bearing: z.number().int(), share: z.number(), areaHa: z.number(), tonnes: figure, /** Rows of a part of a zone; null when all of it is in the lot. */ rowIds: z.array(id).nullable(), /** The lot without this zone; null with one zone or too few readings. */ without: z.object({ brix: z.number(), betweenShare: z.number() }).nullable() });
+export const lotLine = z.object({
+  zoneId: id.nullable(),
+  blockId: id,
+  blockName: z.string(),
+  number: z.number().int(),
+  zoneCount: z.number().int(),
+  name: z.string(),
+  vines: z.number().int(),
+  bearing: z.number().int(),
+  share: z.number(),
+  areaHa: z.number(),
+  tonnes: figure,
+  /** Rows of a part of a zone; null when all of it is in the lot. */
+  rowIds: z.array(id).nullable(),
+  /** The lot without this zone; null with one zone or too few readings. */
+  without: z.object({ brix: z.number(), betweenShare: z.number() }).nullable(),
+});
 export type LotLine = z.infer<typeof lotLine>;
 
 export const lotSummary = z.object({
@@ -125,11 +141,27 @@ export const lotsBoard = z.object({
 });
 export type LotsBoard = z.infer<typeof lotsBoard>;
 
-export const newLot = z.object({ name: shortName, wineType: wineType.default('red'), scenarioId: id.nullable().default(null), pickOn: isoDate.nullable().default(null), tankId: id.nullable().default(null), crew: z.string().trim().max(200).default(''), alcoholMethod: z.enum(brixMethods).nullable().default(null) });
+export const newLot = z.object({
+  name: shortName,
+  wineType: wineType.default('red'),
+  scenarioId: id.nullable().default(null),
+  pickOn: isoDate.nullable().default(null),
+  tankId: id.nullable().default(null),
+  crew: z.string().trim().max(200).default(''),
+  alcoholMethod: z.enum(brixMethods).nullable().default(null),
+});
 export const lotChange = z.object({ name: shortName, wineType, pickOn: isoDate.nullable(), tankId: id.nullable(), crew: z.string().trim().max(200), alcoholMethod: z.enum(brixMethods).nullable() }).partial();
 
 /** The whole new content of a lot: zones of any block, each whole or by rows. */
-export const lotParts = z.object({ parts: z.array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) })).max(200).refine((parts) => new Set(parts.map(({ zoneId }) => zoneId)).size === parts.length, 'A zone stands there twice; name each once, with all its rows.') });
+export const lotParts = z.object({
+  parts: z
+    .array(z.object({ zoneId: id, rowIds: z.array(id).min(1).nullable().default(null) }))
+    .max(200)
+    .refine(
+      (parts) => new Set(parts.map(({ zoneId }) => zoneId)).size === parts.length,
+      'A zone stands there twice; name each once, with all its rows.',
+    ),
+});
 
 /** What one lot holds of a zone goes into another. */
 export const zoneMove = z.object({ zoneId: id, fromLotId: id, fromVersion: z.number().int(), toLotId: id, toVersion: z.number().int() });
@@ -141,7 +173,12 @@ export const tankChange = changesOf(tankFacts);
 export const newScenario = z.object({ name: shortName, copyOf: id });
 
 /** What can be picked and pressed on a day; without a day, on every day that has no line of its own. */
-export const dayCapacity = z.object({ day: isoDate.nullable().default(null), pickT: z.number().min(0).max(10_000).nullable().default(null), pressT: z.number().min(0).max(10_000).nullable().default(null), note: z.string().trim().max(200).default('') });
+export const dayCapacity = z.object({
+  day: isoDate.nullable().default(null),
+  pickT: z.number().min(0).max(10_000).nullable().default(null),
+  pressT: z.number().min(0).max(10_000).nullable().default(null),
+  note: z.string().trim().max(200).default(''),
+});
 export const capacityView = z.object({ day: z.string().nullable(), pickT: z.number().nullable(), pressT: z.number().nullable(), note: z.string() });
 export type CapacityView = z.infer<typeof capacityView>;
 

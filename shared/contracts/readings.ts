@@ -35,7 +35,17 @@ export const newReading = z
 export type NewReading = z.infer<typeof newReading>;
 
 /** What a person found instead of a bearing vine: a proposal for the census. */
-export const vineFinding = z.object({ id, blockId: id, rowId: id, ordinal: z.number().int().min(-10_000).max(100_000), state: vineState, roundId: id.nullable().default(null), notedAt: isoTime, deviceId: z.string().max(80).nullable().default(null), readBy: id.nullable().default(null) });
+export const vineFinding = z.object({
+  id,
+  blockId: id,
+  rowId: id,
+  ordinal: z.number().int().min(-10_000).max(100_000),
+  state: vineState,
+  roundId: id.nullable().default(null),
+  notedAt: isoTime,
+  deviceId: z.string().max(80).nullable().default(null),
+  readBy: id.nullable().default(null),
+});
 export type VineFinding = z.infer<typeof vineFinding>;
 
 export const readingBatch = z.object({ readings: z.array(z.unknown()).max(1000).default([]), findings: z.array(z.unknown()).max(500).default([]) });

@@ -38,7 +38,13 @@ export const dayStop = z.object({
 export type DayStop = z.infer<typeof dayStop>;
 
 export const roundState = z.enum(['sent', 'open', 'closed', 'called off']);
-export const roundChange = z.object({ state: z.enum(['open', 'closed', 'called off']), /** When the phone began; the server's clock otherwise. */ startedAt: z.iso.datetime({ offset: true }).optional(), /** Closed for everybody, not one's own part only. */ whole: z.boolean().optional() });
+export const roundChange = z.object({
+  state: z.enum(['open', 'closed', 'called off']),
+  /** When the phone began; the server's clock otherwise. */
+  startedAt: z.iso.datetime({ offset: true }).optional(),
+  /** Closed for everybody, not one's own part only. */
+  whole: z.boolean().optional(),
+});
 
 export const roundPerson = z.object({ id, name: z.string(), vines: z.number().int(), seconds: z.number(), acknowledgedAt: z.string().nullable(), /** When they were done with their part. */ finishedAt: z.string().nullable() });
 

@@ -42,7 +42,12 @@ export function placesOfLines(table: LabTable, columns: PlaceColumns, around: Ea
   if (numbering === null) return null;
   const byNumber = ({ line, cells }: Line): Found => {
     const block = blockOf.get(line);
-    if (block === undefined || block === 'unknown') return { line, code: columns.block !== null && !isBlank(cells[columns.block]) ? 'noBlock' : 'noPlace', params: { name: columns.block === null ? '' : String(cells[columns.block] ?? '').slice(0, 40) } };
+    if (block === undefined || block === 'unknown')
+      return {
+        line,
+        code: columns.block !== null && !isBlank(cells[columns.block]) ? 'noBlock' : 'noPlace',
+        params: { name: columns.block === null ? '' : String(cells[columns.block] ?? '').slice(0, 40) },
+      };
     return numberedVine(block, cells, { line, row: columns.row!, vine: columns.vine!, numbering });
   };
   const numbered = all(byNumber);

@@ -11,7 +11,8 @@ const words: Record<ColumnUse, readonly string[]> = {
   rainMm: ['rain', 'rainfall', 'precipitation', 'prec', 'precip', 'lluvia', 'precipitacion', 'pluie', 'precipitations', 'pioggia', 'precipitazioni', 'chuva', 'precipitacao', 'rr'],
 };
 /** A station has highest and lowest of these, too. */
-const ofSomethingElse = /(^| )(wind|gust|humidity|hum|rh|pressure|radiation|solar|dew|dewpoint|soil|wet|viento|racha|humedad|presion|radiacion|suelo|vent|rafale|humidite|pression|rayonnement|sol|vento|raffica|umidita|pressione|radiazione|suolo|rajada|humidade|pressao|radiacao|solo)( |$)/;
+const ofSomethingElse =
+  /(^| )(wind|gust|humidity|hum|rh|pressure|radiation|solar|dew|dewpoint|soil|wet|viento|racha|humedad|presion|radiacion|suelo|vent|rafale|humidite|pression|rayonnement|sol|vento|raffica|umidita|pressione|radiazione|suolo|rajada|humidade|pressao|radiacao|solo)( |$)/;
 const hottestC = 50;
 const warmestNightC = 33;
 const linesAboveHead = 20;

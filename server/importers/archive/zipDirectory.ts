@@ -42,7 +42,10 @@ export function checkEntries(entries: readonly ZipEntry[], fileSize: number): vo
     if (entry.isLink) throw unsafe(`It holds a link instead of a file ("${shown}").`, { entry: shown });
     if (entry.isEncrypted) throw new ImportProblem({ code: 'encrypted', fact: `Its contents are protected by a password ("${shown}").`, remedy: 'Pack the files again without a password.', params: { entry: shown } });
     if (entry.bytes > limits.archiveEntryBytes) throw unsafe(`"${shown}" would unpack to ${megabytes(entry.bytes)} MB; ${megabytes(limits.archiveEntryBytes)} MB is the most.`, { entry: shown });
-    if (entry.bytes > limits.archiveRatioFromBytes && entry.bytes > limits.archiveRatio * Math.max(1, entry.packedBytes)) throw unsafe(`"${shown}" would unpack to ${Math.round(entry.bytes / Math.max(1, entry.packedBytes))} times its packed size.`, { entry: shown });
+    if (entry.bytes > limits.archiveRatioFromBytes && entry.bytes > limits.archiveRatio * Math.max(1, entry.packedBytes))
+      throw unsafe(`"${shown}" would unpack to ${Math.round(entry.bytes / Math.max(1, entry.packedBytes))} times its packed size.`, {
+        entry: shown,
+      });
     bytes += entry.bytes;
     packed += entry.packedBytes;
   }

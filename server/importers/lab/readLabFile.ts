@@ -15,7 +15,12 @@ export function readLabFile({ path, fileName, use = 'lab' }: { path: string; fil
     const source = openFile(path);
     try {
       if (source.size === 0) throw new ImportProblem({ code: 'empty', fact: 'It is empty.', remedy: 'Export the results again.' });
-      if (source.size > labLimits.bytes) throw new ImportProblem({ code: 'too-large', fact: `It has ${Math.ceil(source.size / 1e6)} MB; ${labLimits.bytes / 1e6} MB is the most for a table of results.`, remedy: 'Send the table alone, without pictures.' });
+      if (source.size > labLimits.bytes)
+        throw new ImportProblem({
+          code: 'too-large',
+          fact: `It has ${Math.ceil(source.size / 1e6)} MB; ${labLimits.bytes / 1e6} MB is the most for a table of results.`,
+          remedy: 'Send the table alone, without pictures.',
+        });
       return readLabBytes(source.read(0, source.size), use);
     } finally {
       source.close();

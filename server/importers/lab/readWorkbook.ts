@@ -11,7 +11,12 @@ export async function readWorkbook(bytes: Uint8Array<ArrayBuffer>): Promise<RawS
   const entries = readEntries(inMemory(bytes));
   checkEntries(entries, bytes.length);
   const unpacked = entries.reduce((sum, entry) => sum + entry.bytes, 0);
-  if (unpacked > labLimits.unpackedBytes) throw new ImportProblem({ code: 'too-large', fact: `It would unpack to ${Math.round(unpacked / 1e6)} MB; ${labLimits.unpackedBytes / 1e6} MB is the most.`, remedy: 'Send the table alone, without pictures and other sheets.' });
+  if (unpacked > labLimits.unpackedBytes)
+    throw new ImportProblem({
+      code: 'too-large',
+      fact: `It would unpack to ${Math.round(unpacked / 1e6)} MB; ${labLimits.unpackedBytes / 1e6} MB is the most.`,
+      remedy: 'Send the table alone, without pictures and other sheets.',
+    });
   if (!entries.some(({ name }) => name === 'xl/workbook.xml')) throw new ImportProblem({ code: 'wrong-type', fact: 'It is an archive, but no .xlsx workbook.', remedy: 'Send the table itself as XLSX or CSV.' });
   const sheets = await readXlsxFile(Buffer.from(bytes));
   if (sheets.length > labLimits.sheets) throw new ImportProblem({ code: 'too-large', fact: `It has ${sheets.length} sheets; ${labLimits.sheets} is the most.`, remedy: 'Send the sheet with the results alone.' });

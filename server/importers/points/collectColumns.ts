@@ -43,7 +43,12 @@ export function collectColumns(table: ParsedTable, kept: readonly number[], { ma
       continue;
     }
     out.numbers.set(name, values);
-    if (units.size > 0) out.warnings.push({ code: 'units-in-cells', text: `Column "${name}" has units in its cells (${[...units].slice(0, 3).join(', ')}); the numbers are used as they stand.`, params: { column: name, units: [...units].slice(0, 3).join(', ') } });
+    if (units.size > 0)
+      out.warnings.push({
+        code: 'units-in-cells',
+        text: `Column "${name}" has units in its cells (${[...units].slice(0, 3).join(', ')}); the numbers are used as they stand.`,
+        params: { column: name, units: [...units].slice(0, 3).join(', ') },
+      });
     if (numeric < filled) out.warnings.push({ code: 'not-numbers', text: `Column "${name}" has ${filled - numeric} cells that are not numbers; they count as missing.`, params: { column: name, count: filled - numeric } });
   }
   return out;

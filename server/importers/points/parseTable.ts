@@ -24,7 +24,13 @@ export function parseTable(text: string): ParsedTable {
   if (all.length === 0) throw new ImportProblem({ code: 'empty', fact: 'It has no rows.', remedy: 'Export the table again.' });
   const width = usualWidth(all.map(({ cells }) => cells.length));
   if (width < 2) throw new ImportProblem({ code: 'wrong-type', fact: 'It has a single column: no comma, semicolon or tab separates its cells.', remedy: 'Save the table as CSV.', params: { why: 'single-column' } });
-  if (width > limits.columns) throw new ImportProblem({ code: 'too-large', fact: `It has ${width} columns; ${limits.columns} is the most.`, remedy: 'Keep only the columns that are needed.', params: { why: 'many-columns', columns: width, most: limits.columns } });
+  if (width > limits.columns)
+    throw new ImportProblem({
+      code: 'too-large',
+      fact: `It has ${width} columns; ${limits.columns} is the most.`,
+      remedy: 'Keep only the columns that are needed.',
+      params: { why: 'many-columns', columns: width, most: limits.columns },
+    });
   return splitHeader(all, { separator, width });
 }
 

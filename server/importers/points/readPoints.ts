@@ -44,17 +44,36 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   const base = { kind: 'points' as const, separator: table.separator, decimalMark, encoding, hasHeader: table.hasHeader };
   if (columns === null) {
     const shapes = table.names.find((_, i) => table.rows.slice(0, 20).some((row) => /^(srid=\d+;)?(multi)?(point|linestring|polygon)\s*z?m?\s*\(/i.test(row[i] ?? '')));
-    if (shapes !== undefined) throw new ImportProblem({ code: 'no-coordinates', fact: `Its places are written as text (WKT) in the column "${shapes}".`, remedy: 'Export it as GeoJSON or GeoPackage, or with a column each for X and Y.', params: { why: 'places-as-text', column: shapes } });
+    if (shapes !== undefined)
+      throw new ImportProblem({
+        code: 'no-coordinates',
+        fact: `Its places are written as text (WKT) in the column "${shapes}".`,
+        remedy: 'Export it as GeoJSON or GeoPackage, or with a column each for X and Y.',
+        params: { why: 'places-as-text', column: shapes },
+      });
     const isReadings = namesRowsAndVines(table.names);
     if (isReadings) warnings.push({ code: 'rows-and-vines', text: 'It tells vines by row and number: readings of vines come in under "Earlier readings".' });
     const choices = numericColumns(table, decimalMark).map((name) => ({ value: name, label: name }));
-    if (choices.length < 2) throw new ImportProblem({ code: 'no-coordinates', fact: `None of its columns holds positions (it has ${table.names.slice(0, 6).join(', ').slice(0, 120)}).`, remedy: isReadings ? 'Readings by row and vine come in under "Earlier readings"; a layer needs columns with latitude and longitude, or easting and northing.' : 'Add columns with latitude and longitude, or easting and northing.' });
+    if (choices.length < 2)
+      throw new ImportProblem({
+        code: 'no-coordinates',
+        fact: `None of its columns holds positions (it has ${table.names.slice(0, 6).join(', ').slice(0, 120)}).`,
+        remedy: isReadings
+          ? 'Readings by row and vine come in under "Earlier readings"; a layer needs columns with latitude and longitude, or easting and northing.'
+          : 'Add columns with latitude and longitude, or easting and northing.',
+      });
     questions.push({ code: 'columns', text: 'Which columns hold longitude (or easting) and latitude (or northing)?', choices });
     return { ...base, columns: describe(table, table.rows), position: null, reference: null, epsg: null, count: table.rows.length, pointsLonLat: [], rowNumbers: [], numbers: new Map(), texts: new Map(), setAside: [], questions, warnings };
   }
   const positions = readPositions(table, columns, { mark: decimalMark, swap: options.answers?.swapAxes === true });
   warnings.push(...positions.warnings);
-  if (positions.kept.length === 0) throw new ImportProblem({ code: 'no-coordinates', fact: `No row has a usable position in the columns "${table.names[columns.x]}" and "${table.names[columns.y]}".`, remedy: 'Check the columns, or export the table with decimal degrees.', params: { why: 'no-position-in', x: table.names[columns.x]!, y: table.names[columns.y]! } });
+  if (positions.kept.length === 0)
+    throw new ImportProblem({
+      code: 'no-coordinates',
+      fact: `No row has a usable position in the columns "${table.names[columns.x]}" and "${table.names[columns.y]}".`,
+      remedy: 'Check the columns, or export the table with decimal degrees.',
+      params: { why: 'no-position-in', x: table.names[columns.x]!, y: table.names[columns.y]! },
+    });
   const placed = place(positions, columns, options);
   const sample = evenly(positions.kept.map((_, i): [number, number] => [positions.x[i]!, positions.y[i]!]));
   const kept = positions.kept.filter((_, i) => placed.lonLat[i] !== null);
@@ -64,7 +83,16 @@ function understand({ text, encoding }: DecodedText, options: ReadOptions): Poin
   return {
     ...base,
     // Decimal commas, units in cells and a few words among numbers leave a column one of numbers.
-    columns: describe(table, kept.slice(0, 5000).map((row) => table.rows[row]!)).map((column) => (collected.numbers.has(column.name) ? { ...column, kind: 'number' as const } : column.kind === 'number' && collected.texts.has(column.name) ? { ...column, kind: 'text' as const } : column)),
+    columns: describe(
+      table,
+      kept.slice(0, 5000).map((row) => table.rows[row]!),
+    ).map((column) =>
+      collected.numbers.has(column.name)
+        ? { ...column, kind: 'number' as const }
+        : column.kind === 'number' && collected.texts.has(column.name)
+          ? { ...column, kind: 'text' as const }
+          : column,
+    ),
     position: { first: table.names[columns.x]!, second: table.names[columns.y]!, frame: placed.frame },
     reference: placed.reference,
     epsg: placed.reference?.epsg ?? null,
@@ -101,7 +129,11 @@ function place({ kept, x, y }: PositionReading, columns: PositionColumns, option
     questions.push(referenceQuestion(box, options.estateLonLat ?? null, { code: 'table-projection', text: 'Its positions are in a map projection that the table does not name.' }));
     return { frame, reference, named: null, lonLat: kept.map(() => null), questions, warnings };
   }
-  if (columns.frame === 'projected' && frame === 'lonlat' && options.answers?.epsg === undefined) warnings.push({ code: 'degrees-assumed', text: 'Its positions are small enough to be degrees and are read as longitude and latitude (WGS 84). Check them on the map.' });
+  if (columns.frame === 'projected' && frame === 'lonlat' && options.answers?.epsg === undefined)
+    warnings.push({
+      code: 'degrees-assumed',
+      text: 'Its positions are small enough to be degrees and are read as longitude and latitude (WGS 84). Check them on the map.',
+    });
   const swapped = axesQuestion(box, reference, options);
   const placement = checkPlacement(box, reference, options);
   questions.push(...(swapped === null ? placement.questions : [swapped]));

@@ -50,7 +50,12 @@ export function readPositions(table: ParsedTable, columns: PositionColumns, { ma
     kept.push(row);
   }
   const warnings: ImportWarning[] = [];
-  if (sexagesimal > 0) warnings.push({ code: 'degrees-minutes', text: `Its positions are written in degrees and minutes; they are turned into decimal degrees (the first is ${y[0]!.toFixed(6)}, ${x[0]!.toFixed(6)}).`, params: { count: sexagesimal } });
+  if (sexagesimal > 0)
+    warnings.push({
+      code: 'degrees-minutes',
+      text: `Its positions are written in degrees and minutes; they are turned into decimal degrees (the first is ${y[0]!.toFixed(6)}, ${x[0]!.toFixed(6)}).`,
+      params: { count: sexagesimal },
+    });
   if (lettersSwapped > 0) warnings.push({ code: 'letters-swapped', text: 'The letters N, S, E, W say that latitude and longitude stand in each other’s column; the letters are followed.', params: { count: lettersSwapped } });
   return { kept, x, y, warnings, setAside: [...aside].map(([reason, rows]) => ({ reason, count: rows.length, rows: rows.slice(0, LISTED) })) };
 }

@@ -44,7 +44,14 @@ export function readBands(layout: RasterLayout, tags: GeoTags, lastIsMask = fals
       colour: colours[i] ?? null,
     };
   }).filter((band) => band.index !== alphaBand);
-  return { bands, alphaBand, badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null, isPalette: tags.photometric === 3, pictureColours: pictureColours[tags.photometric ?? -1] ?? null, unit: items.find((item) => item.role === 'unittype' && item.sample === 0)?.text ?? null };
+  return {
+    bands,
+    alphaBand,
+    badNoData: noData === null && tags.noDataText !== null && tags.noDataText !== '' ? tags.noDataText : null,
+    isPalette: tags.photometric === 3,
+    pictureColours: pictureColours[tags.photometric ?? -1] ?? null,
+    unit: items.find((item) => item.role === 'unittype' && item.sample === 0)?.text ?? null,
+  };
 }
 
 /** The no-data tag holds text. NaN needs no value of its own: NaN is always missing. Null: no usable value. */

@@ -82,7 +82,11 @@ function placeOf(raster: OpenRaster, options: RasterReadOptions, warnings: Impor
   throw new ImportProblem({
     code: 'no-placement',
     fact: isWorldFileBad ? 'Its world file does not hold the six numbers that place a picture.' : facts[placement.reason],
-    remedy: isWorldFileBad ? 'Export the picture again as GeoTIFF, or with its world file.' : placement.reason === 'control-points' ? 'Rectify it in the program that made it and export it again as GeoTIFF.' : 'Export it as GeoTIFF, or send its world file (.tfw) along with it.',
+    remedy: isWorldFileBad
+      ? 'Export the picture again as GeoTIFF, or with its world file.'
+      : placement.reason === 'control-points'
+        ? 'Rectify it in the program that made it and export it again as GeoTIFF.'
+        : 'Export it as GeoTIFF, or send its world file (.tfw) along with it.',
     params: { why: isWorldFileBad ? 'world-file' : placement.reason === 'none' ? 'no-place' : placement.reason },
   });
 }
@@ -99,7 +103,12 @@ function referenceOf(raster: OpenRaster, { options, outline, questions, warnings
   const said = referenceFromGeoKeys(raster.tags.geoKeys);
   if (said.kind === 'known') {
     if (said.assumedDatum) warnings.push({ code: 'assumed-datum', text: `${said.reference.name} does not name its datum; it is taken as WGS 84, which its ellipsoid suggests.`, params: { name: said.reference.name } });
-    if (said.saidUnitM !== undefined) warnings.push({ code: 'unit-of-length', text: `It names ${said.reference.name} and says that its coordinates are counted in units of ${said.saidUnitM} m, which is not that system's own; they are taken so. Compare it with the block outline on the map.`, params: { name: said.reference.name, unit: String(Number(said.saidUnitM.toPrecision(7))) } });
+    if (said.saidUnitM !== undefined)
+      warnings.push({
+        code: 'unit-of-length',
+        text: `It names ${said.reference.name} and says that its coordinates are counted in units of ${said.saidUnitM} m, which is not that system's own; they are taken so. Compare it with the block outline on the map.`,
+        params: { name: said.reference.name, unit: String(Number(said.saidUnitM.toPrecision(7))) },
+      });
     const datum = datumWarning(said.reference);
     if (datum !== null) warnings.push(datum);
     return said.reference;

@@ -64,7 +64,12 @@ export async function feed(reader: PictureReader, sinks: readonly BlockTaker[], 
   const needed = neededBlocks(reader, sinks);
   const pixels = needed.reduce((sum, row) => sum + row.length, 0) * blockWidth * blockHeight;
   if (pixels > limits.rasterPixels) {
-    throw new ImportProblem({ code: 'too-large', fact: `${Math.round(pixels / 1e6)} million pixels lie over the blocks; ${limits.rasterPixels / 1e6} million is the most.`, remedy: 'Export it with larger pixels; 0.1 m is fine enough for vine rows.', params: { millionPixels: Math.round(pixels / 1e6) } });
+    throw new ImportProblem({
+      code: 'too-large',
+      fact: `${Math.round(pixels / 1e6)} million pixels lie over the blocks; ${limits.rasterPixels / 1e6} million is the most.`,
+      remedy: 'Export it with larger pixels; 0.1 m is fine enough for vine rows.',
+      params: { millionPixels: Math.round(pixels / 1e6) },
+    });
   }
   const rowsAtOnce = Math.ceil(SHARED_ROWS / blockHeight);
   let own = 0;
@@ -120,5 +125,10 @@ export function notOverlapping(understood: RasterUnderstood, grids: readonly Gri
 }
 
 export function noValues(blocks: number): ImportProblem {
-  return new ImportProblem({ code: 'no-values', fact: `It has no values over the ${blocks === 1 ? 'block' : 'blocks'}: every pixel there is marked as missing.`, remedy: 'Check that it is the right file and band, and that its mark for missing values is right.', params: { why: 'missing-here' } });
+  return new ImportProblem({
+    code: 'no-values',
+    fact: `It has no values over the ${blocks === 1 ? 'block' : 'blocks'}: every pixel there is marked as missing.`,
+    remedy: 'Check that it is the right file and band, and that its mark for missing values is right.',
+    params: { why: 'missing-here' },
+  });
 }

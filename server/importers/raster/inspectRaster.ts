@@ -47,7 +47,12 @@ export function inspectRaster(input: string | Uint8Array, options: RasterReadOpt
 /** Numbers of no measure at all, such as floats whose bytes stand in another order than the file says. */
 function requireSound({ bands }: RasterPreview): void {
   if (!bands.every(({ raw }) => isScrambled(raw))) return;
-  throw new ImportProblem({ code: 'damaged', fact: 'Its values jump from under 1e-12 to over 1e12, which nothing measured does: their bytes stand in another order than the file says.', remedy: 'Export it again, without a predictor or in little-endian order.', params: { why: 'scrambled' } });
+  throw new ImportProblem({
+    code: 'damaged',
+    fact: 'Its values jump from under 1e-12 to over 1e12, which nothing measured does: their bytes stand in another order than the file says.',
+    remedy: 'Export it again, without a predictor or in little-endian order.',
+    params: { why: 'scrambled' },
+  });
 }
 
 /** Bands of one file share their mark for missing values: one question serves all. */

@@ -46,7 +46,12 @@ function maskBeside(source: ByteSource, { width, height }: RasterLayout): NonNul
   const layout = readLayout(source, structure.directories[0]!, structure.littleEndian);
   if (layout.width === width && layout.height === height && layout.samples === 1) return { source, layout };
   const [shown, expected] = [`${layout.width} × ${layout.height}`, `${width} × ${height}`];
-  throw new ImportProblem({ code: 'mask-misfit', fact: `Its mask (.msk) has ${shown} pixels and the picture ${expected}.`, remedy: 'Send the mask that belongs to it, or the picture with its mask inside.', params: { mask: shown, picture: expected } });
+  throw new ImportProblem({
+    code: 'mask-misfit',
+    fact: `Its mask (.msk) has ${shown} pixels and the picture ${expected}.`,
+    remedy: 'Send the mask that belongs to it, or the picture with its mask inside.',
+    params: { mask: shown, picture: expected },
+  });
 }
 
 function subfileType(source: ByteSource, directory: TiffDirectory, littleEndian: boolean): number {

@@ -29,7 +29,24 @@ export interface RasterLayout {
 const SLICE_BYTES = 2 * 2 ** 20;
 
 /** Tag numbers of TIFF 6.0 used here. */
-const tag = { width: 256, height: 257, bits: 258, compression: 259, fillOrder: 266, stripOffsets: 273, samples: 277, rowsPerStrip: 278, stripBytes: 279, planar: 284, predictor: 317, tileWidth: 322, tileHeight: 323, tileOffsets: 324, tileBytes: 325, format: 339 } as const;
+const tag = {
+  width: 256,
+  height: 257,
+  bits: 258,
+  compression: 259,
+  fillOrder: 266,
+  stripOffsets: 273,
+  samples: 277,
+  rowsPerStrip: 278,
+  stripBytes: 279,
+  planar: 284,
+  predictor: 317,
+  tileWidth: 322,
+  tileHeight: 323,
+  tileOffsets: 324,
+  tileBytes: 325,
+  format: 339,
+} as const;
 
 /** Reads and checks the layout. Throws `unsupported-encoding` by name, `damaged` or `too-large`. */
 export function readLayout(source: ByteSource, directory: TiffDirectory, littleEndian: boolean): RasterLayout {

@@ -48,7 +48,16 @@ export function readCanopyOntoGrids(input: string | Uint8Array, options: RasterR
       const understood = describeOpen(raster, own);
       const bands = bandsOf(request.quantity, understood);
       const noData = noDataOf(bands, understood, request.noData);
-      const sinks = request.grids.map(({ grid, reachM, rowsXY }) => new CanopyCells(grid, frameOn(grid, understood), { bands: bands.length, noData, reachM, indexOf: pixelIndex(request, bands, understood), isOnRow: rowsXY === null ? null : rowStrips(rowsXY, rowStripM / 2) }));
+      const sinks = request.grids.map(
+        ({ grid, reachM, rowsXY }) =>
+          new CanopyCells(grid, frameOn(grid, understood), {
+            bands: bands.length,
+            noData,
+            reachM,
+            indexOf: pixelIndex(request, bands, understood),
+            isOnRow: rowsXY === null ? null : rowStrips(rowsXY, rowStripM / 2),
+          }),
+      );
       if (sinks.every((sink) => sink.window === null)) throw notOverlapping(understood, request.grids.map(({ grid }) => grid));
       const unmarked = noData[0] === null;
       const picture = () => openPicture(raster, { bands, alphaBand: understood.alphaBand, dropHuge: unmarked, dropDark: unmarked && request.quantity.kind === 'index' && raster.mask === null });

@@ -28,7 +28,12 @@ export function checkValues({ index, raw, values }: { index: number; raw: Float6
     if (suspect !== null) questions.push(voidQuestion(suspect));
   }
   const full = saturation(raw, band);
-  if (full !== null && lowest !== highest) warnings.push({ code: 'saturated', text: `${name} has ${percent(full.share)} of its pixels at ${full.value}, the largest value its type can hold; differences there are lost.`, params: { band: index, share: full.share } });
+  if (full !== null && lowest !== highest)
+    warnings.push({
+      code: 'saturated',
+      text: `${name} has ${percent(full.share)} of its pixels at ${full.value}, the largest value its type can hold; differences there are lost.`,
+      params: { band: index, share: full.share },
+    });
   return { questions, warnings };
 }
 

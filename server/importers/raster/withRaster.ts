@@ -14,7 +14,11 @@ export function withRaster<T>(input: string | Uint8Array, options: RasterReadOpt
   return withSource(input, async (source) => {
     if (!startsAsZip(source)) return (options.maskPath ?? null) === null ? use(await openRaster(source), options) : withSource(options.maskPath!, async (mask) => use(await openRaster(source, mask), options));
     const packed = unpack(source);
-    return use(await openRaster(fromBytes(packed.bytes), packed.mask === null ? null : fromBytes(packed.mask)), { ...options, worldFileText: options.worldFileText ?? packed.worldFileText, projectionFileText: options.projectionFileText ?? packed.projectionFileText });
+    return use(await openRaster(fromBytes(packed.bytes), packed.mask === null ? null : fromBytes(packed.mask)), {
+      ...options,
+      worldFileText: options.worldFileText ?? packed.worldFileText,
+      projectionFileText: options.projectionFileText ?? packed.projectionFileText,
+    });
   });
 }
 

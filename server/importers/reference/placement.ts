@@ -41,7 +41,18 @@ export function checkPlacement(outline: readonly XYPair[], reference: ReferenceS
   }
   const keep = { value: 'keep', label: `It does lie there (${reference.name})`, outlineLonLat: ring, distanceKm: shown };
   const nearby = referenceChoices(outline, estateLonLat).filter((choice) => (choice.distanceKm ?? Infinity) < CONFIRM_KM);
-  return { outlineLonLat: ring, questions: [{ code: 'placement', text: `${text} Is that right, or are its coordinates in another reference system than ${reference.name}?`, why: { code: 'far', text, params: { km: shown, name: reference.name } }, choices: [keep, ...nearby] }], warnings: [] };
+  return {
+    outlineLonLat: ring,
+    questions: [
+      {
+        code: 'placement',
+        text: `${text} Is that right, or are its coordinates in another reference system than ${reference.name}?`,
+        why: { code: 'far', text, params: { km: shown, name: reference.name } },
+        choices: [keep, ...nearby],
+      },
+    ],
+    warnings: [],
+  };
 }
 
 /** From the estate to the nearest point of the box around the positions; 0 inside. */

@@ -88,7 +88,12 @@ export function datumUncertaintyM({ epsg, definition }: Pick<ReferenceSystem, 'e
 export function datumWarning(reference: ReferenceSystem): ImportWarning | null {
   const uncertaintyM = datumUncertaintyM(reference);
   const { name } = reference;
-  if (uncertaintyM === null) return { code: 'datum-own', text: `${name} is converted to today's satellite positions by numbers that the file itself brings; how well they fit is not known here. Compare the layer with the block outline on the map.`, params: { name } };
+  if (uncertaintyM === null)
+    return {
+      code: 'datum-own',
+      text: `${name} is converted to today's satellite positions by numbers that the file itself brings; how well they fit is not known here. Compare the layer with the block outline on the map.`,
+      params: { name },
+    };
   if (uncertaintyM < 2) return null;
   return { code: 'datum', text: `${name} is converted to today's satellite positions; the layer may lie up to ${uncertaintyM} m aside. Compare it with the block outline on the map.`, params: { name, uncertaintyM } };
 }

@@ -93,7 +93,14 @@ function describe(wkt: ParsedWkt, text: string): { definition: string; assumedDa
   const isSwiss = projection === 'omerc' && Math.abs((wkt.alpha ?? wkt.rectified_grid_angle ?? 0) - Math.PI / 2) < 1e-9;
   const parameters = isSwiss
     ? degrees(wkt.lat0, 'lat_0') + degrees(wkt.longc ?? wkt.long0, 'lon_0')
-    : degrees(wkt.lat0, 'lat_0') + degrees(wkt.lat1, 'lat_1') + degrees(wkt.lat2, 'lat_2') + degrees(wkt.lat_ts, 'lat_ts') + degrees(projection === 'omerc' ? undefined : (wkt.longc ?? wkt.long0), 'lon_0') + degrees(projection === 'omerc' ? wkt.longc : undefined, 'lonc') + degrees(wkt.alpha, 'alpha') + degrees(wkt.rectified_grid_angle, 'gamma');
+    : degrees(wkt.lat0, 'lat_0') +
+      degrees(wkt.lat1, 'lat_1') +
+      degrees(wkt.lat2, 'lat_2') +
+      degrees(wkt.lat_ts, 'lat_ts') +
+      degrees(projection === 'omerc' ? undefined : (wkt.longc ?? wkt.long0), 'lon_0') +
+      degrees(projection === 'omerc' ? wkt.longc : undefined, 'lonc') +
+      degrees(wkt.alpha, 'alpha') +
+      degrees(wkt.rectified_grid_angle, 'gamma');
   const unit = wkt.to_meter === undefined || wkt.to_meter === 1 ? ' +units=m' : ` +to_meter=${wkt.to_meter}`;
   const sphere = /auxiliary_?sphere|pseudo.?mercator/i.test(text) ? ' +a=6378137 +b=6378137' : ` ${datum.text}`;
   // South Africa counts from north and east; the dialect of .prj files says it by the projection alone.

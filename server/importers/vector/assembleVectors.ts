@@ -35,7 +35,13 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const notes = noNotes();
   const cleaned = layers.map((layer) => ({ name: layer.name, features: layer.features.map((feature) => ({ properties: withUsableNames(feature.properties), geometry: feature.geometry === null ? null : cleanGeometry(feature.geometry, notes) })) }));
   const outline = boxOf(cleaned);
-  if (outline === null) throw new ImportProblem({ code: 'no-layer', fact: layers.every(({ features }) => features.length === 0) ? 'It holds no shapes.' : 'None of its shapes has usable coordinates.', remedy: 'Export the layer again and check that it is not empty.', params: { why: layers.every(({ features }) => features.length === 0) ? 'no-shapes' : 'no-usable-shapes' } });
+  if (outline === null)
+    throw new ImportProblem({
+      code: 'no-layer',
+      fact: layers.every(({ features }) => features.length === 0) ? 'It holds no shapes.' : 'None of its shapes has usable coordinates.',
+      remedy: 'Export the layer again and check that it is not empty.',
+      params: { why: layers.every(({ features }) => features.length === 0) ? 'no-shapes' : 'no-usable-shapes' },
+    });
   const reference = options.answers?.epsg === undefined ? named : referenceFromAnswer(options.answers.epsg);
   const swapped = reference === null ? null : axesQuestion(outline, reference, options);
   if (swapped !== null) questions.push(swapped);
@@ -47,7 +53,13 @@ export async function assembleVectors({ layers, reference: named, whyNoReference
   const datum = reference === null ? null : datumWarning(reference);
   if (datum !== null) warnings.push(datum);
   const farthest = Math.max(...(placement?.outlineLonLat ?? []).map(([, lat]) => Math.abs(lat)));
-  if (farthest > farthestLatitude) throw new ImportProblem({ code: 'bad-geometry', fact: `Its shapes reach to latitude ${Math.round(farthest)}, beyond every map of fields.`, remedy: 'Send only the shapes of the estate, with longitude before latitude.', params: { why: 'beyond-maps', latitude: Math.round(farthest) } });
+  if (farthest > farthestLatitude)
+    throw new ImportProblem({
+      code: 'bad-geometry',
+      fact: `Its shapes reach to latitude ${Math.round(farthest)}, beyond every map of fields.`,
+      remedy: 'Send only the shapes of the estate, with longitude before latitude.',
+      params: { why: 'beyond-maps', latitude: Math.round(farthest) },
+    });
   const usable = placement?.outlineLonLat === null || placement === null ? null : reference;
   const repairs: GeometryRepair[] = [];
   const out: VectorLayer[] = [];

@@ -5,7 +5,24 @@ const dos437 = 'ÇüéâäàåçêëèïîìÄÅÉæÆôöòûùÿÖÜ¢£¥₧�
 const dos850 = 'ÇüéâäàåçêëèïîìÄÅÉæÆôöòûùÿÖÜø£Ø×ƒáíóúñÑªº¿®¬½¼¡«»░▒▓│┤ÁÂÀ©╣║╗╝¢¥┐└┴┬├─┼ãÃ╚╔╩╦╠═╬¤ðÐÊËÈıÍÎÏ┘┌█▄¦Ì▀ÓßÔÒõÕµþÞÚÛÙýÝ¯´\u00ad±‗¾¶§÷¸°¨·¹³²■\u00a0';
 
 /** Language driver codes of dBASE headers (ESRI and dBASE lists; common practice). */
-const drivers: Readonly<Record<number, string>> = { 0x01: '437', 0x02: '850', 0x03: '1252', 0x57: '1252', 0x58: '1252', 0x59: '1252', 0x64: '1250', 0x65: '866', 0x78: 'big5', 0x79: 'euc-kr', 0x7a: 'gbk', 0x7b: 'shift_jis', 0xc8: '1250', 0xc9: '1251', 0xca: '1254', 0xcb: '1253' };
+const drivers: Readonly<Record<number, string>> = {
+  0x01: '437',
+  0x02: '850',
+  0x03: '1252',
+  0x57: '1252',
+  0x58: '1252',
+  0x59: '1252',
+  0x64: '1250',
+  0x65: '866',
+  0x78: 'big5',
+  0x79: 'euc-kr',
+  0x7a: 'gbk',
+  0x7b: 'shift_jis',
+  0xc8: '1250',
+  0xc9: '1251',
+  0xca: '1254',
+  0xcb: '1253',
+};
 
 /** Windows numbers of double-byte code pages under the names that the browser standard gives them. */
 const eastAsian: Readonly<Record<string, string>> = { '932': 'shift_jis', '936': 'gbk', '949': 'euc-kr', '950': 'big5' };

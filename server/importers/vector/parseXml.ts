@@ -11,13 +11,24 @@ export function parseXml(text: string, rootName: string): Document {
   checkDepth(text);
   const parsed = parse(text);
   const found = parsed.documentElement?.localName ?? 'nothing';
-  if (found.toLowerCase() !== rootName) throw new ImportProblem({ code: 'wrong-type', fact: `It is XML, but begins with <${found.slice(0, 40)}> instead of <${rootName}>.`, remedy: `Export the outlines as ${rootName.toUpperCase()}.`, params: { found: found.slice(0, 40) } });
+  if (found.toLowerCase() !== rootName)
+    throw new ImportProblem({
+      code: 'wrong-type',
+      fact: `It is XML, but begins with <${found.slice(0, 40)}> instead of <${rootName}>.`,
+      remedy: `Export the outlines as ${rootName.toUpperCase()}.`,
+      params: { found: found.slice(0, 40) },
+    });
   return parsed;
 }
 
 function parse(text: string): Document {
   const fail = (detail: string): never => {
-    throw new ImportProblem({ code: 'damaged', fact: `It is not valid XML (${detail.split('\n')[0]!.slice(0, 120)}).`, remedy: 'Export the file again; it was probably cut off or edited by hand.', params: { why: 'not-whole-text', detail: detail.slice(0, 120) } });
+    throw new ImportProblem({
+      code: 'damaged',
+      fact: `It is not valid XML (${detail.split('\n')[0]!.slice(0, 120)}).`,
+      remedy: 'Export the file again; it was probably cut off or edited by hand.',
+      params: { why: 'not-whole-text', detail: detail.slice(0, 120) },
+    });
   };
   const parser = new DOMParser({ onError: (level, message) => (level === 'warning' ? undefined : fail(String(message))) });
   try {

@@ -95,10 +95,28 @@ function nothingRead({ entries }: ZipArchive): ImportProblem {
   const inner = entries.filter(({ name }) => !isPackerRubbish(name));
   const has = (pattern: RegExp) => inner.find(({ name }) => pattern.test(name))?.name.split('/').pop()!.slice(0, 80);
   const part = has(/\.(shx|dbf|prj)$/i);
-  if (part !== undefined) return new ImportProblem({ code: 'missing-part', fact: `The archive holds "${part}" but no .shp file, which has the shapes.`, remedy: 'Pack .shp, .shx, .dbf and .prj of the layer into one ZIP.', params: { why: 'no-shp', part } });
+  if (part !== undefined)
+    return new ImportProblem({
+      code: 'missing-part',
+      fact: `The archive holds "${part}" but no .shp file, which has the shapes.`,
+      remedy: 'Pack .shp, .shx, .dbf and .prj of the layer into one ZIP.',
+      params: { why: 'no-shp', part },
+    });
   if (has(/\.(zip|kmz|rar|7z)$/i)) return new ImportProblem({ code: 'unsafe-archive', fact: 'It holds another archive, which is not opened for safety.', remedy: 'Unpack it once and send the inner archive.', params: { why: 'archive-inside' } });
-  if (inner.some(({ name }) => /^(xl|word|ppt)\/|^\[Content_Types\]\.xml$|^content\.xml$|^mimetype$/.test(name))) return new ImportProblem({ code: 'wrong-type', fact: 'It is an office document, not an archive of map files.', remedy: 'Save a table as CSV, or send a zipped shapefile.', params: { why: 'is-document' } });
-  if (has(/\.(gdbtable|gdbtablx)$/i)) return new ImportProblem({ code: 'wrong-type', fact: 'It is a file geodatabase, which is not read.', remedy: 'Export the layer as GeoPackage or zipped shapefile.', params: { why: 'is-geodatabase', found: 'a file geodatabase' } });
+  if (inner.some(({ name }) => /^(xl|word|ppt)\/|^\[Content_Types\]\.xml$|^content\.xml$|^mimetype$/.test(name)))
+    return new ImportProblem({
+      code: 'wrong-type',
+      fact: 'It is an office document, not an archive of map files.',
+      remedy: 'Save a table as CSV, or send a zipped shapefile.',
+      params: { why: 'is-document' },
+    });
+  if (has(/\.(gdbtable|gdbtablx)$/i))
+    return new ImportProblem({
+      code: 'wrong-type',
+      fact: 'It is a file geodatabase, which is not read.',
+      remedy: 'Export the layer as GeoPackage or zipped shapefile.',
+      params: { why: 'is-geodatabase', found: 'a file geodatabase' },
+    });
   const listed = inner.slice(0, 4).map(({ name }) => name.split('/').pop()!.slice(0, 40)).join(', ');
   const isTable = has(/\.(csv|tsv|txt)$/i) !== undefined;
   const remedy = isTable ? 'Unpack it and send the table itself.' : 'Pack all parts of the shapefile (.shp, .shx, .dbf, .prj) into one ZIP.';

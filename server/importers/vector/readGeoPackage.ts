@@ -52,14 +52,25 @@ interface FeatureTable {
 function featureTables(database: Database): { stored: FeatureTable[]; skipped: string[] } {
   const kinds = new Map(rowsOf(database, "select name, type, sql from sqlite_master where type in ('table', 'view')").map(([name, type, sql]) => [String(name), { isTable: type === 'table' && !/^\s*create\s+virtual/i.test(String(sql)) }]));
   const own = ['gpkg_contents', 'gpkg_geometry_columns', 'gpkg_spatial_ref_sys'];
-  if (!own.every((name) => kinds.get(name)?.isTable)) throw new ImportProblem({ code: 'wrong-type', fact: 'It is a database, but not a GeoPackage: the tables that name its layers are missing.', remedy: 'Export the layer as GeoPackage, zipped shapefile or GeoJSON.' });
+  if (!own.every((name) => kinds.get(name)?.isTable))
+    throw new ImportProblem({
+      code: 'wrong-type',
+      fact: 'It is a database, but not a GeoPackage: the tables that name its layers are missing.',
+      remedy: 'Export the layer as GeoPackage, zipped shapefile or GeoJSON.',
+    });
   const listed = rowsOf(database, "select c.table_name, g.column_name, g.srs_id from gpkg_contents c join gpkg_geometry_columns g on g.table_name = c.table_name where c.data_type = 'features' order by c.table_name");
   const tables = listed.map(([name, column, system]) => ({ name: String(name), geometryColumn: String(column), systemId: Number(system) }));
   if (tables.length === 0) throw new ImportProblem({ code: 'no-layer', fact: 'It holds no layer of shapes, only pictures or tables.', remedy: 'Export the layer with its shapes.' });
   // A view computes whatever its author wrote, for as long as that takes: only stored shapes are read.
   const stored = tables.filter(({ name }) => kinds.get(name)?.isTable);
   const skipped = tables.filter(({ name }) => kinds.has(name) && !kinds.get(name)!.isTable).map(({ name }) => name);
-  if (stored.length === 0) throw new ImportProblem({ code: 'no-layer', fact: `Its layer "${tables[0]!.name.slice(0, 60)}" is ${kinds.has(tables[0]!.name) ? 'a view, which is not run for safety' : 'named, but not in the file'}.`, remedy: 'Save the layer as one of its own and send that.', params: { layer: tables[0]!.name.slice(0, 60) } });
+  if (stored.length === 0)
+    throw new ImportProblem({
+      code: 'no-layer',
+      fact: `Its layer "${tables[0]!.name.slice(0, 60)}" is ${kinds.has(tables[0]!.name) ? 'a view, which is not run for safety' : 'named, but not in the file'}.`,
+      remedy: 'Save the layer as one of its own and send that.',
+      params: { layer: tables[0]!.name.slice(0, 60) },
+    });
   return { stored, skipped };
 }
 
@@ -81,7 +92,13 @@ function readTable(database: Database, { name, geometryColumn, systemId }: Featu
     const properties = Object.fromEntries(columns.flatMap((column, index) => (index === at || row[index] instanceof Uint8Array ? [] : [[column, row[index]]])));
     return flat(row[at] instanceof Uint8Array ? shapeOf(row[at], lost) : null).map((geometry) => ({ geometry, properties }));
   });
-  if (rows.length > 0 && lost.curved === rows.length) throw new ImportProblem({ code: 'bad-geometry', fact: `All shapes of its layer "${name.slice(0, 60)}" have curved sides, which are not read.`, remedy: 'Turn curves into straight pieces (segmentize, linearize) and export the layer again.', params: { layer: name.slice(0, 60) } });
+  if (rows.length > 0 && lost.curved === rows.length)
+    throw new ImportProblem({
+      code: 'bad-geometry',
+      fact: `All shapes of its layer "${name.slice(0, 60)}" have curved sides, which are not read.`,
+      remedy: 'Turn curves into straight pieces (segmentize, linearize) and export the layer again.',
+      params: { layer: name.slice(0, 60) },
+    });
   const warnings: ImportWarning[] = [];
   if (lost.curved > 0) warnings.push({ code: 'curved-shapes', text: `In "${name}", ${lost.curved} ${lost.curved === 1 ? 'shape has' : 'shapes have'} curved sides, which are not read.`, params: { layer: name, count: lost.curved } });
   if (lost.damaged > 0) warnings.push({ code: 'damaged-shapes', text: `In "${name}", ${lost.damaged} of ${rows.length} shapes are damaged and left out.`, params: { layer: name, count: lost.damaged } });

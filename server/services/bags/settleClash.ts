@@ -49,7 +49,15 @@ export async function settleClash(access: Access, bagId: string, input: z.infer<
       if (holder) await takeLabelOver(trx, access, { bag: later, from: holder, seasonId: (await seasonFinder(trx, estateId))(later) });
     }
     const done: SettledClashDone = { first: wasFirst, later: wasLater, holder: holder ? bagBefore(holder) : null, moved, leftOut };
-    await writeAudit(trx, access, { action: 'bags.settle', subjectType: 'bags', subjectId: later.id, subjectName: later.code, before: { first: first.id, later: later.id }, after: { choice: input.choice, newCode: input.newCode, done }, reason: input.reason });
+    await writeAudit(trx, access, {
+      action: 'bags.settle',
+      subjectType: 'bags',
+      subjectId: later.id,
+      subjectName: later.code,
+      before: { first: first.id, later: later.id },
+      after: { choice: input.choice, newCode: input.newCode, done },
+      reason: input.reason,
+    });
   });
 }
 

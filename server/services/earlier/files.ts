@@ -64,7 +64,13 @@ export async function answerEarlierFile(access: Access, fileId: string, answers:
   for (const [key, value] of Object.entries(answers)) {
     const question = understood.questions.find((each) => each.key === key);
     if (!question) throw new Unusable('notAsked', say('notAsked', { key, file: record.fileName }));
-    if (question.answer !== value) throw new Unusable('notOffered', question.choices.length === 0 ? say('notADay', { value, file: record.fileName }) : say('notOffered', { value, key, choices: question.choices.map((choice) => choice.label ?? choice.value).join(', ') }));
+    if (question.answer !== value)
+      throw new Unusable(
+        'notOffered',
+        question.choices.length === 0
+          ? say('notADay', { value, file: record.fileName })
+          : say('notOffered', { value, key, choices: question.choices.map((choice) => choice.label ?? choice.value).join(', ') }),
+      );
   }
   await EarlierFile.query().where({ estateId: access.estateId, id: fileId }).patch({ answers: { ...record.answers, ...answers } });
   return viewEarlierFile(access, fileId, now);

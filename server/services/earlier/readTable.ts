@@ -47,7 +47,17 @@ async function earlierBlocks(estateId: string): Promise<EarlierBlock[]> {
   const out: EarlierBlock[] = [];
   for (const { id } of blocks) {
     const { block, stored, rows, vines } = await loadBlockVines(estateId, id);
-    out.push({ id, name: block.name, plantedYear: block.plantedYear, epsg: block.epsg, vineOneEnd: block.vineOneEnd, withoutRows: block.withoutRows, rows: rows.rows, vines, named: stored.map((row) => ({ rowId: row.id, label: row.label, labelWas: row.labelWas })) });
+    out.push({
+      id,
+      name: block.name,
+      plantedYear: block.plantedYear,
+      epsg: block.epsg,
+      vineOneEnd: block.vineOneEnd,
+      withoutRows: block.withoutRows,
+      rows: rows.rows,
+      vines,
+      named: stored.map((row) => ({ rowId: row.id, label: row.label, labelWas: row.labelWas })),
+    });
   }
   return out;
 }
@@ -55,7 +65,13 @@ async function earlierBlocks(estateId: string): Promise<EarlierBlock[]> {
 /** Entries without those that the estate has already: same vine, measure, day and value, not left out. */
 export async function withoutKnown(estateId: string, entries: readonly EarlierEntry[], { timeZone, trx }: { timeZone: string; trx?: TransactionOrKnex }): Promise<EarlierEntry[]> {
   const blockIds = [...new Set(entries.map(({ blockId }) => blockId))];
-  const stored = (await Reading.query(trx).where({ estateId }).whereIn('blockId', blockIds).whereIn('measureCode', [...new Set(entries.map(({ measure }) => measure))]).whereNotNull('rowId').whereNull('excludedReason').select('rowId', 'ordinal', 'measureCode', 'value', 'takenAt')) as (Reading & { rowId: string; ordinal: number })[];
+  const stored = (await Reading.query(trx)
+    .where({ estateId })
+    .whereIn('blockId', blockIds)
+    .whereIn('measureCode', [...new Set(entries.map(({ measure }) => measure))])
+    .whereNotNull('rowId')
+    .whereNull('excludedReason')
+    .select('rowId', 'ordinal', 'measureCode', 'value', 'takenAt')) as (Reading & { rowId: string; ordinal: number })[];
   const format = new Intl.DateTimeFormat('en-CA', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit' });
   const known = new Set(stored.map(({ rowId, ordinal, measureCode, value, takenAt }) => readingKey({ rowId, ordinal, measure: measureCode, day: format.format(takenAt), value })));
   return entries.filter((entry) => !known.has(readingKey(entry)));

@@ -48,7 +48,13 @@ export async function storeEarlierFile(access: Access, fileId: string, { leaveOu
     for (let from = 0; from < rows.length; from += rowsAtOnce) await Reading.query(trx).insert(rows.slice(from, from + rowsAtOnce));
     const summary = summariseEarlier(table.understood, entries, { blocks: table.around.blocks, seasons, newSeasons: made, known: table.understood.entries.length - entries.length });
     await EarlierFile.query(trx).where({ estateId, id: fileId }).patch({ state: 'stored', summary, storedBy: access.personId, storedAt: now });
-    await writeAudit(trx, access, { action: 'earlier.store', subjectType: 'earlierFile', subjectId: fileId, subjectName: record.fileName, after: { readings: entries.length, leftOut: leaveOut, seasons: made.map(({ name }) => name), answers: record.answers } });
+    await writeAudit(trx, access, {
+      action: 'earlier.store',
+      subjectType: 'earlierFile',
+      subjectId: fileId,
+      subjectName: record.fileName,
+      after: { readings: entries.length, leftOut: leaveOut, seasons: made.map(({ name }) => name), answers: record.answers },
+    });
   });
   return viewEarlierFile(access, fileId, now);
 }

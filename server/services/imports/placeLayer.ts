@@ -45,7 +45,17 @@ async function placeImport(context: JobContext): Promise<unknown> {
     const { relief } = placed[0]!;
     if (relief && relief.cells.length > 0) await keepRelief(trx, estateId, { ...relief, cells: Buffer.from(encodeCells(relief.cells)) });
     await FileImport.query(trx).where({ estateId, id: record.id }).patch({ state: 'done', problem: null, finishedAt: new Date() });
-    await writeAudit(trx, { estateId, personId: createdBy }, { action: 'layer.place', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) } });
+    await writeAudit(
+      trx,
+      { estateId, personId: createdBy },
+      {
+        action: 'layer.place',
+        subjectType: 'import',
+        subjectId: record.id,
+        subjectName: record.fileName,
+        after: { layers: placed.map(({ type, blocks: on }) => ({ type, blocks: on.length })) },
+      },
+    );
     return { layerIds, blocks: placed[0]!.blocks.length };
   });
 }

@@ -97,7 +97,13 @@ async function keep(access: Access, { upload, companions, parts }: Received, des
     const record = await FileImport.query(trx).insert(
       storable({ estateId: access.estateId, fileId: file.id, fileName: shownFileName(upload.name), format: described.format, state: 'asks' as const, understood, answers: {}, warnings: described.notes, problem: null, createdBy: access.personId }),
     );
-    await writeAudit(trx, access, { action: 'import.receive', subjectType: 'import', subjectId: record.id, subjectName: record.fileName, after: { sha256, bytes, format: described.format, ...(kept.length === 0 ? {} : { parts: understood.companions.parts }) } });
+    await writeAudit(trx, access, {
+      action: 'import.receive',
+      subjectType: 'import',
+      subjectId: record.id,
+      subjectName: record.fileName,
+      after: { sha256, bytes, format: described.format, ...(kept.length === 0 ? {} : { parts: understood.companions.parts }) },
+    });
     return record;
   });
 }

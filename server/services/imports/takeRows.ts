@@ -33,7 +33,18 @@ export async function takeRows(trx: Transaction, access: Access, found: readonly
     const isLabelled = labels.every((label) => label !== null) && new Set(labels).size === labels.length;
     const effects = await layRows(trx, planted, { built: rowsFromStored(planted, rows), labels: isLabelled ? (labels as string[]) : rowLabels(rows.length, block.rowOneSide, block.firstRowLabel).map(String) }, now);
     await writeAudit(trx, access, { action: 'rows.import', subjectType: 'block', subjectId: blockId, subjectName: block.name, before: { rowSpacingM: block.rowSpacingM, rowBearingDeg: block.rowBearingDeg, rowCount: block.rowCount }, after: facts });
-    notes.push({ code: 'rows-laid', text: `${rows.length} rows are laid on ${block.name}, ${rowSpacingM} m apart: ${effects.kept} lie where one lay, ${effects.made} are new, ${effects.retired} are no longer there.`, params: { count: rows.length, block: block.name, spacingM: rowSpacingM, kept: effects.kept, made: effects.made, retired: effects.retired } });
+    notes.push({
+      code: 'rows-laid',
+      text: `${rows.length} rows are laid on ${block.name}, ${rowSpacingM} m apart: ${effects.kept} lie where one lay, ${effects.made} are new, ${effects.retired} are no longer there.`,
+      params: {
+        count: rows.length,
+        block: block.name,
+        spacingM: rowSpacingM,
+        kept: effects.kept,
+        made: effects.made,
+        retired: effects.retired,
+      },
+    });
   }
   return notes;
 }

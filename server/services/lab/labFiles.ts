@@ -29,7 +29,15 @@ export async function receiveLabFile(access: Access, uploads: readonly Upload[],
     const { sha256, bytes } = await fileStore().keep(upload.path);
     const record = await LabFile.transaction(async (trx) => {
       const file = await StoredFile.query(trx).insert({ estateId: access.estateId, sha256, bytes, originalName: storable(upload.name).slice(0, 255), uploadedBy: access.personId });
-      const row = await LabFile.query(trx).insertAndFetch({ estateId: access.estateId, fileId: file.id, fileName: shownFileName(storable(upload.name)), labName: mapping?.labName ?? '', answers: mapping?.mapping.answers ?? {}, sentBy: access.personId, sentAt: now });
+      const row = await LabFile.query(trx).insertAndFetch({
+        estateId: access.estateId,
+        fileId: file.id,
+        fileName: shownFileName(storable(upload.name)),
+        labName: mapping?.labName ?? '',
+        answers: mapping?.mapping.answers ?? {},
+        sentBy: access.personId,
+        sentAt: now,
+      });
       await writeAudit(trx, access, { action: 'lab.receiveFile', subjectType: 'labFile', subjectId: row.id, subjectName: row.fileName, after: { sha256, bytes } });
       return row;
     });
@@ -104,5 +112,14 @@ async function view(access: Access, record: LabFile, now: Date): Promise<LabFile
 }
 
 function outside(row: LabFile, people: readonly Person[]): Omit<LabFileView, 'words' | 'questions' | 'entries' | 'rememberedFrom' | 'changesChecked'> {
-  return { id: row.id, fileName: row.fileName, labName: row.labName, state: row.state, sentAt: row.sentAt.toISOString(), sentBy: people.find(({ id }) => id === row.sentBy)?.name ?? null, storedAt: row.storedAt?.toISOString() ?? null, storedCount: row.storedCount };
+  return {
+    id: row.id,
+    fileName: row.fileName,
+    labName: row.labName,
+    state: row.state,
+    sentAt: row.sentAt.toISOString(),
+    sentBy: people.find(({ id }) => id === row.sentBy)?.name ?? null,
+    storedAt: row.storedAt?.toISOString() ?? null,
+    storedCount: row.storedCount,
+  };
 }

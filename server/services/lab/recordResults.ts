@@ -79,7 +79,8 @@ function refusalOf(result: NewLabResult, { bags, measures, known, standing }: Co
   if (Number.isNaN(convert(result, valueOf(result)!.value))) return `${result.typed} cannot be in this unit. Check figure and unit.`;
   const { seen } = result;
   const meanwhile = seen === null ? [] : (standing.get(cellOf({ bagId: bags.get(result.code)!.id, measureCode: measure.code })) ?? []).filter(({ id }) => !seen.includes(id));
-  if (meanwhile.length > 0) return `${result.code}, ${measure.code}: ${meanwhile.map(({ valueTyped, value }) => valueTyped ?? String(value)).join(' / ')} was stored there meanwhile. Look at it, then type ${result.typed} again as a correction or beside it.`;
+  if (meanwhile.length > 0)
+    return `${result.code}, ${measure.code}: ${meanwhile.map(({ valueTyped, value }) => valueTyped ?? String(value)).join(' / ')} was stored there meanwhile. Look at it, then type ${result.typed} again as a correction or beside it.`;
   if (result.supersedes === null) return null;
   const before = known.get(result.supersedes);
   if (!before || before.measureCode !== result.measureCode) return 'The figure that this one corrects is not known here.';

@@ -37,7 +37,14 @@ export async function storeLabFile(access: Access, fileId: string, input: z.infe
     const answers = Object.fromEntries(understood.questions.flatMap(({ key, answer }) => (answer !== null && isRemembered(key) ? [[key, answer]] : [])));
     await LabMapping.query(trx).insert({ estateId, labName: input.labName, mapping: { signature: understood.signature, answers }, updatedAt: now }).onConflict(['estateId', 'labName']).merge(['mapping', 'updatedAt']);
     await LabFile.query(trx).where({ estateId, id: fileId }).patch({ state: 'stored', labName: input.labName, storedBy: personId, storedAt: now, storedCount: understood.entries.length });
-    await writeAudit(trx, access, { action: 'lab.storeFile', subjectType: 'labFile', subjectId: fileId, subjectName: record.fileName, after: { labName: input.labName, results: understood.entries.length, answers: record.answers }, reason: input.reason === '' ? null : input.reason });
+    await writeAudit(trx, access, {
+      action: 'lab.storeFile',
+      subjectType: 'labFile',
+      subjectId: fileId,
+      subjectName: record.fileName,
+      after: { labName: input.labName, results: understood.entries.length, answers: record.answers },
+      reason: input.reason === '' ? null : input.reason,
+    });
   });
   return viewLabFile(access, fileId, now);
 }

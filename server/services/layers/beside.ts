@@ -21,7 +21,16 @@ export async function layersBeside(access: Access, layerId: string, blockId: str
   // What is made from a layer tells its story by its making.
   const others = layers.filter((layer) => layer.id !== layerId && layerType(layer.type).resampling !== 'class' && layer.derivedFrom === null && own.derivedFrom !== layer.id).slice(0, mostOthers);
   const rows = await BlockLayer.query().where({ estateId, blockId, gridKey: block.gridKey }).whereIn('layerId', others.map((layer) => layer.id)).select('layerId', 'cells');
-  const likenesses = await runCompute<(LayerLikeness | null)[]>('compareLayers', { boundary: block.boundary.coordinates, cellSizeM: block.cellSizeM, own: new Uint8Array(here.cells), others: rows.map((row) => new Uint8Array(row.cells)) }, { lane: 'quick' });
+  const likenesses = await runCompute<(LayerLikeness | null)[]>(
+    'compareLayers',
+    {
+      boundary: block.boundary.coordinates,
+      cellSizeM: block.cellSizeM,
+      own: new Uint8Array(here.cells),
+      others: rows.map((row) => new Uint8Array(row.cells)),
+    },
+    { lane: 'quick' },
+  );
   return rows.flatMap((row, at) => {
     const likeness = likenesses[at];
     const other = others.find((layer) => layer.id === row.layerId)!;

@@ -28,8 +28,22 @@ export async function overrideLayer(access: Access, layerId: string, { blockId, 
     const here = await BlockLayer.query(trx).findOne({ estateId: access.estateId, layerId, blockId }).forUpdate().throwIfNotFound();
     if (!here.findings.some((finding) => finding.severity === 'red')) throw new Unusable('nothingRed', say('nothingRed', { layer: layer.name }));
     const person = await Person.query(trx).findById(access.personId).throwIfNotFound();
-    await BlockLayer.query(trx).where({ estateId: access.estateId, layerId, blockId }).patch(storable({ override: { personId: person.id, by: person.name, reason, at: now.toISOString() }, findings: here.findings.filter(({ code }) => code !== 'overrideLapsed') }));
-    await writeAudit(trx, access, { action: 'layer.override', subjectType: 'layer', subjectId: layerId, subjectName: layer.name, after: { blockId, findings: here.findings.filter((finding) => finding.severity === 'red').map((finding) => finding.code) }, reason });
+    await BlockLayer.query(trx)
+      .where({ estateId: access.estateId, layerId, blockId })
+      .patch(
+        storable({
+          override: { personId: person.id, by: person.name, reason, at: now.toISOString() },
+          findings: here.findings.filter(({ code }) => code !== 'overrideLapsed'),
+        }),
+      );
+    await writeAudit(trx, access, {
+      action: 'layer.override',
+      subjectType: 'layer',
+      subjectId: layerId,
+      subjectName: layer.name,
+      after: { blockId, findings: here.findings.filter((finding) => finding.severity === 'red').map((finding) => finding.code) },
+      reason,
+    });
   });
 }
 

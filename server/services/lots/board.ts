@@ -57,7 +57,15 @@ export async function findScenario(access: Access, options: { scenarioId: string
   const query = Scenario.query().where('scenarios.estateId', access.estateId);
   const found = options.scenarioId
     ? await query.findOne({ 'scenarios.id': options.scenarioId })
-    : await query.where({ isLive: true }).join('seasons', 'seasons.id', 'scenarios.seasonId').orderByRaw('(seasons.starts_on <= ?::date and seasons.ends_on >= ?::date) desc, seasons.starts_on desc', [options.today, options.today]).select('scenarios.*').first();
+    : await query
+        .where({ isLive: true })
+        .join('seasons', 'seasons.id', 'scenarios.seasonId')
+        .orderByRaw('(seasons.starts_on <= ?::date and seasons.ends_on >= ?::date) desc, seasons.starts_on desc', [
+          options.today,
+          options.today,
+        ])
+        .select('scenarios.*')
+        .first();
   if (!found) throw new Missing(say('noSeasonLots'));
   return found;
 }

@@ -61,6 +61,13 @@ export async function switchFactor(access: Access, input: z.infer<typeof factorS
   if (input.isOn && (found === undefined || found.n < LOTS_NEEDED)) throw new Unusable('fewLots', say('fewLots', { n: found?.n ?? 0, least: LOTS_NEEDED }));
   await FactorSwitch.transaction(async (trx) => {
     await FactorSwitch.query(trx).insert({ estateId: access.estateId, kind: input.kind, about: input.about, isOn: input.isOn, setBy: access.personId, setAt: now }).onConflict(['estateId', 'kind', 'about']).merge(['isOn', 'setBy', 'setAt']);
-    await writeAudit(trx, access, { action: 'factors.switch', subjectType: 'factor', subjectId: access.estateId, subjectName: `${input.kind} ${input.about}`, before: { isOn: found?.isOn ?? false }, after: { isOn: input.isOn, n: found?.n ?? 0, mean: found?.mean ?? null } });
+    await writeAudit(trx, access, {
+      action: 'factors.switch',
+      subjectType: 'factor',
+      subjectId: access.estateId,
+      subjectName: `${input.kind} ${input.about}`,
+      before: { isOn: found?.isOn ?? false },
+      after: { isOn: input.isOn, n: found?.n ?? 0, mean: found?.mean ?? null },
+    });
   });
 }

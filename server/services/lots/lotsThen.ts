@@ -26,7 +26,11 @@ export async function lotsThen(estateId: string, scenarioId: string, until: Date
   const lots = of('lots').filter((body) => body.scenarioId === scenarioId).map((body) => Lot.fromDatabaseJson(body)).sort((a, b) => String(a.createdAt).localeCompare(String(b.createdAt)));
   const lotOfPart = new Map(of('lot_parts').map((body) => [body.id, body.lotId]));
   const runs = of('lot_row_runs').filter((body) => body.scenarioId === scenarioId).map((body) => ({ lotId: String(lotOfPart.get(body.lotPartId)), rowId: String(body.rowId), ...endsOf(String(body.vines)) }));
-  const tanks = of('tanks').map((body) => Tank.fromDatabaseJson(body)).filter(({ retiredAt }) => retiredAt === null).map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill })).sort((a, b) => a.name.localeCompare(b.name));
+  const tanks = of('tanks')
+    .map((body) => Tank.fromDatabaseJson(body))
+    .filter(({ retiredAt }) => retiredAt === null)
+    .map(({ id, name, litres, workingFill, minimumFill }) => ({ id, name, litres, workingFill, minimumFill }))
+    .sort((a, b) => a.name.localeCompare(b.name));
   return { lots, runs, tanks, switches: of('factor_switches').map((body) => FactorSwitch.fromDatabaseJson(body)) };
 }
 

@@ -48,7 +48,13 @@ async function storedRuns(trx: Transaction, estateId: string, { lotId, blockId }
     .where('lot_row_runs.estateId', estateId)
     .join(`${LotPart.tableName} as part`, 'part.id', 'lot_row_runs.lotPartId')
     .where({ 'part.lotId': lotId, 'part.blockId': blockId })
-    .select('lot_row_runs.id', 'lot_row_runs.lotPartId', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as (VineRun & { id: string; lotPartId: string })[];
+    .select(
+      'lot_row_runs.id',
+      'lot_row_runs.lotPartId',
+      'lot_row_runs.rowId',
+      LotRowRun.raw('lower(lot_row_runs.vines) as "from"'),
+      LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'),
+    )) as unknown as (VineRun & { id: string; lotPartId: string })[];
 }
 
 async function keepRuns(trx: Transaction, facts: { estateId: string; scenarioId: string; lotPartId: string }, runs: readonly VineRun[]): Promise<void> {

@@ -37,7 +37,15 @@ export async function sendNotice(access: Access, lotId: string, input: NewNotice
   if (!scenario.isLive) throw new Unusable('whatIf', say('noticeOfWhatIf'));
   if (lot.state === 'draft' || lot.pickOn === null) throw new Unusable('notConfirmed', say('notConfirmed', { lot: lot.name }));
   const board = await lotsBoard(access, { scenarioId: scenario.id, today: await estateDay(estateId, options.now) });
-  const body = bodyOf(board.lots.find((one) => one.id === lotId)!, { input, pickOn: lot.pickOn, labels: new Map(board.zones.flatMap((zone) => zone.rows.map((row) => [row.id, row.label]))), tank: board.tanks.find((tank) => tank.id === lot.tankId)?.name ?? null });
+  const body = bodyOf(
+    board.lots.find((one) => one.id === lotId)!,
+    {
+      input,
+      pickOn: lot.pickOn,
+      labels: new Map(board.zones.flatMap((zone) => zone.rows.map((row) => [row.id, row.label]))),
+      tank: board.tanks.find((tank) => tank.id === lot.tankId)?.name ?? null,
+    },
+  );
   const recipients = await recipientsOf(estateId, input.people);
   return PickNotice.transaction(async (trx) => {
     // Numbers run without a gap or a double: one notice at a time in an estate.
@@ -135,9 +143,23 @@ export async function listNotices(access: Access, { today, knownOn }: { today: s
       const differences = before ? differencesBetween(before.body as NoticeBody, body) : [];
       const voidAt = by(notice.voidAt);
       return {
-        id: notice.id, number: notice.number, lotId: notice.lotId, replacesNumber: notice.replacesNumber, voidAt: voidAt?.toISOString() ?? null, isOver: voidAt === null && body.pickOn < (knownOn ?? today), replacedBy: all.find((other) => other.replacesNumber === notice.number)?.number ?? null,
-        body: seesLots ? body : withoutTonnes(body), differences: seesLots ? differences : withoutTonnesDifferences(differences), sentBy: nameOf(notice.sentBy), sentAt: notice.sentAt.toISOString(),
-        readers: own(notice).map((reader) => ({ personId: reader.personId, name: nameOf(reader.personId), readAt: by(reader.readAt)?.toISOString() ?? null })), mine: own(notice).some((reader) => reader.personId === personId),
+        id: notice.id,
+        number: notice.number,
+        lotId: notice.lotId,
+        replacesNumber: notice.replacesNumber,
+        voidAt: voidAt?.toISOString() ?? null,
+        isOver: voidAt === null && body.pickOn < (knownOn ?? today),
+        replacedBy: all.find((other) => other.replacesNumber === notice.number)?.number ?? null,
+        body: seesLots ? body : withoutTonnes(body),
+        differences: seesLots ? differences : withoutTonnesDifferences(differences),
+        sentBy: nameOf(notice.sentBy),
+        sentAt: notice.sentAt.toISOString(),
+        readers: own(notice).map((reader) => ({
+          personId: reader.personId,
+          name: nameOf(reader.personId),
+          readAt: by(reader.readAt)?.toISOString() ?? null,
+        })),
+        mine: own(notice).some((reader) => reader.personId === personId),
       };
     });
 }
@@ -158,7 +180,15 @@ export async function printNotice(access: Access, noticeId: string, options: { p
   const title = fill(texts.title, { number: notice.number });
   return {
     name: `${title}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'),
-    body: await noticeSheet({ title, estateName: estate.name, text, link: `${options.publicUrl}/n/${notice.code}`, scan: texts.scan, voidWords: stateWords(notice, { replacedBy, texts, language: person.language, day: dayIn(estate.timeZone, options.now) }), now: options.now }),
+    body: await noticeSheet({
+      title,
+      estateName: estate.name,
+      text,
+      link: `${options.publicUrl}/n/${notice.code}`,
+      scan: texts.scan,
+      voidWords: stateWords(notice, { replacedBy, texts, language: person.language, day: dayIn(estate.timeZone, options.now) }),
+      now: options.now,
+    }),
   };
 }
 

@@ -37,7 +37,11 @@ export async function pickStops(estateId: string, lots: readonly DatedLot[], { t
   else query.where('createdAt', '<=', at);
   const entered = (await query
     .orderBy('endsAt', 'desc')
-    .select('entry_restrictions.*', EntryRestriction.raw("to_char(starts_at at time zone ?, 'YYYY-MM-DD') as \"firstDay\"", [timeZone]), EntryRestriction.raw("to_char((ends_at at time zone ?) - interval '1 second', 'YYYY-MM-DD') as \"lastDay\"", [timeZone]))) as (EntryRestriction & { firstDay: string; lastDay: string })[];
+    .select(
+      'entry_restrictions.*',
+      EntryRestriction.raw('to_char(starts_at at time zone ?, \'YYYY-MM-DD\') as "firstDay"', [timeZone]),
+      EntryRestriction.raw("to_char((ends_at at time zone ?) - interval '1 second', 'YYYY-MM-DD') as \"lastDay\"", [timeZone]),
+    )) as (EntryRestriction & { firstDay: string; lastDay: string })[];
   const changed = at === null ? new Map<string, string | null>() : await pickDaysAt(estateId, entered.map(({ id }) => id), { at, trx });
   const [blocks, people] = await Promise.all([
     Block.query(trx).findByIds([...new Set(entered.map(({ blockId }) => blockId))]).select('id', 'name'),

@@ -88,7 +88,18 @@ async function knownOnDays(estateId: string, ground: BoardGround, { scenarioId, 
 }
 
 function summaryOf(lines: readonly Judged[]): Summary {
-  const records = lines.flatMap(({ forecast, actualT }): ForecastRecord[] => (forecast === null || forecast.halfWidth === null || actualT === null ? [] : [{ forecast: forecast.value, lower: forecast.value - forecast.halfWidth, upper: forecast.value + forecast.halfWidth, actual: actualT }]));
+  const records = lines.flatMap(({ forecast, actualT }): ForecastRecord[] =>
+    forecast === null || forecast.halfWidth === null || actualT === null
+      ? []
+      : [
+          {
+            forecast: forecast.value,
+            lower: forecast.value - forecast.halfWidth,
+            upper: forecast.value + forecast.halfWidth,
+            actual: actualT,
+          },
+        ],
+  );
   const { n, bias, meanAbsoluteError, meanRelativeError, held, few } = reviewForecasts(records);
   const told = (value: number) => (Number.isNaN(value) ? null : value);
   return { n, bias: told(bias), meanAbsoluteError: told(meanAbsoluteError), meanRelativeError: told(meanRelativeError), held, few };

@@ -28,9 +28,27 @@ export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]
   const zones = all.map(({ block, number, weighed, forecastOn, outlook }): ReviewedZone => {
     const forecast = figureOf(scaled(outlook.tonnes, weighed.share), { n: null, kind: 'estimated' });
     const actualT = weighed.kg / 1000;
-    return { blockId: block.ground.block.id, blockName: block.ground.block.name, zone: number, forecastOn, forecast, actualT, how: weighed.by === 'scale' ? 'measured' : 'shared', held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth };
+    return {
+      blockId: block.ground.block.id,
+      blockName: block.ground.block.name,
+      zone: number,
+      forecastOn,
+      forecast,
+      actualT,
+      how: weighed.by === 'scale' ? 'measured' : 'shared',
+      held: forecast.halfWidth === null ? null : Math.abs(actualT - forecast.value) <= forecast.halfWidth,
+    };
   });
-  const shares = all.filter(({ isLast }) => isLast).map(({ block, at, outlook, weighed }) => ({ blockId: block.ground.block.id, own: errorParts({ forecastT: outlook.tonnes.value * weighed.share, actualT: weighed.kg / 1000, ratios: ratiosOf(outlook, block.outlooks[at]!) }) }));
+  const shares = all
+    .filter(({ isLast }) => isLast)
+    .map(({ block, at, outlook, weighed }) => ({
+      blockId: block.ground.block.id,
+      own: errorParts({
+        forecastT: outlook.tonnes.value * weighed.share,
+        actualT: weighed.kg / 1000,
+        ratios: ratiosOf(outlook, block.outlooks[at]!),
+      }),
+    }));
   return { zones, parts: summed(shares.flatMap(({ own }) => own)), partsOf: (blockId) => summed(shares.filter((one) => one.blockId === blockId).flatMap(({ own }) => own)) };
 }
 

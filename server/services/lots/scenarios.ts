@@ -24,7 +24,19 @@ export async function copyScenario(access: Access, input: z.infer<typeof newScen
 /** Copies lots with their vines into a scenario, as drafts. */
 export async function copyLots(trx: Transaction, access: Access, { lots, to }: { lots: readonly Lot[]; to: Scenario }): Promise<void> {
   for (const lot of lots) {
-    const made = await Lot.query(trx).insert({ estateId: access.estateId, scenarioId: to.id, seasonId: lot.seasonId, name: lot.name, wineType: lot.wineType, pickOn: lot.pickOn, tankId: lot.tankId, crew: lot.crew, alcoholMethod: lot.alcoholMethod, createdBy: access.personId, createdAt: lot.createdAt });
+    const made = await Lot.query(trx).insert({
+      estateId: access.estateId,
+      scenarioId: to.id,
+      seasonId: lot.seasonId,
+      name: lot.name,
+      wineType: lot.wineType,
+      pickOn: lot.pickOn,
+      tankId: lot.tankId,
+      crew: lot.crew,
+      alcoholMethod: lot.alcoholMethod,
+      createdBy: access.personId,
+      createdAt: lot.createdAt,
+    });
     for (const part of await LotPart.query(trx).where({ estateId: access.estateId, lotId: lot.id })) {
       const { id: partId, ...facts } = part.toJSON() as LotPart;
       const copied = await LotPart.query(trx).insert({ ...facts, lotId: made.id });

@@ -56,7 +56,17 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
   if (answer.groupings === 0) throw new Unusable('nothingFits', say('nothingFits'), { leftOut: leftOut(new Set()) });
   if (answer.lots.length === 0) throw new Unusable('notFoundInTime', say('notFoundInTime', { seconds: limitSeconds }));
   const lots = answer.lots.map((lot) => ({ lot, own: lot.zones.map((index) => zones[index]!) }));
-  const days = pickDays(lots.map(({ lot, own }) => ({ tonnes: lot.tonnes, pressed: isPressed(own[0]!), earliest: own.reduce<string | null>((latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest), null) })), room);
+  const days = pickDays(
+    lots.map(({ lot, own }) => ({
+      tonnes: lot.tonnes,
+      pressed: isPressed(own[0]!),
+      earliest: own.reduce<string | null>(
+        (latest, { earliest }) => (earliest !== null && (latest === null || earliest > latest) ? earliest : latest),
+        null,
+      ),
+    })),
+    room,
+  );
   const names = lotNames(lots.map(({ own }) => own), kept.map(({ name }) => name));
   const placed = new Set(answer.lots.flatMap((lot) => lot.zones));
   const whyHere = (zone: number, lot: LotChoice) => {
@@ -64,8 +74,18 @@ export async function suggestScenario(access: Access, asked: NewSuggestion, opti
     return { ...reason, nearest: nearest && { lotName: names[nearest.lot]!, distance: nearest.distance, against: nearest.against } };
   };
   const suggestion: SuggestionView = {
-    asked, madeOn: options.today, provedBest: answer.provedBest, groupings: answer.groupings, roomKnown: room.some(({ pickT, pressT }) => pickT !== null || pressT !== null),
-    lots: lots.map(({ lot }, at) => ({ lotName: names[at]!, tank: tanks[lot.tank]!.name, chanceOfFit: lot.chanceOfFit, pickOn: days[at] ?? null, zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyHere(zone, lot) })) })),
+    asked,
+    madeOn: options.today,
+    provedBest: answer.provedBest,
+    groupings: answer.groupings,
+    roomKnown: room.some(({ pickT, pressT }) => pickT !== null || pressT !== null),
+    lots: lots.map(({ lot }, at) => ({
+      lotName: names[at]!,
+      tank: tanks[lot.tank]!.name,
+      chanceOfFit: lot.chanceOfFit,
+      pickOn: days[at] ?? null,
+      zones: lot.zones.map((zone) => ({ zoneId: zones[zone]!.id, zone: zones[zone]!.name, reason: whyHere(zone, lot) })),
+    })),
     leftOut: leftOut(placed),
   };
   return store(access, { live, kept, suggestion, made: lots.map(({ lot, own }, at) => ({ lot, own, name: names[at]!, pickOn: days[at] ?? null, tankId: tanks[lot.tank]!.id })) });
@@ -125,8 +145,19 @@ async function earliestDays(estateId: string, firstDay: string): Promise<Map<str
   const { timeZone } = await Estate.query().findById(estateId).throwIfNotFound();
   const rows = (await EntryRestriction.query()
     .where({ estateId })
-    .where((holds) => holds.where((closed) => closed.whereNull('liftedAt').whereRaw('(ends_at at time zone ?) > ?::timestamp', [timeZone, firstDay])).orWhere('noPickBefore', '>', firstDay))
-    .select('blockId', 'noPickBefore', EntryRestriction.raw("case when lifted_at is null then to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') end as \"openOn\"", [timeZone]))) as unknown as { blockId: string; noPickBefore: string | null; openOn: string | null }[];
+    .where((holds) =>
+      holds
+        .where((closed) => closed.whereNull('liftedAt').whereRaw('(ends_at at time zone ?) > ?::timestamp', [timeZone, firstDay]))
+        .orWhere('noPickBefore', '>', firstDay),
+    )
+    .select(
+      'blockId',
+      'noPickBefore',
+      EntryRestriction.raw(
+        "case when lifted_at is null then to_char((ends_at at time zone ?) - interval '1 second' + interval '1 day', 'YYYY-MM-DD') end as \"openOn\"",
+        [timeZone],
+      ),
+    )) as unknown as { blockId: string; noPickBefore: string | null; openOn: string | null }[];
   const first = new Map<string, string>();
   for (const { blockId, noPickBefore, openOn } of rows) {
     for (const day of [noPickBefore, openOn]) if (day !== null && day > (first.get(blockId) ?? '')) first.set(blockId, day);

@@ -42,7 +42,20 @@ export async function enterTicket(access: Access, input: NewTicket, now: Date): 
     if (!corrected && known.some((ticket) => ticket.ticketNo === input.ticketNo)) throw new Clash('ticketTwice', say('ticketTwice', { ticketNo: input.ticketNo }));
     const factor = kgPerUnit[input.unit];
     requireSplitAddsUp(input.split, (input.gross - input.tare) * factor);
-    const ticket = await ScaleTicket.query(trx).insert({ estateId, lotId: lot.id, ticketNo: input.ticketNo, grossKg: input.gross * factor, tareKg: input.tare * factor, unitTyped: input.unit, weighedAt: new Date(input.weighedAt), split: input.split, corrects: input.corrects, note: input.note, enteredBy: access.personId, enteredAt: now } as never);
+    const ticket = await ScaleTicket.query(trx).insert({
+      estateId,
+      lotId: lot.id,
+      ticketNo: input.ticketNo,
+      grossKg: input.gross * factor,
+      tareKg: input.tare * factor,
+      unitTyped: input.unit,
+      weighedAt: new Date(input.weighedAt),
+      split: input.split,
+      corrects: input.corrects,
+      note: input.note,
+      enteredBy: access.personId,
+      enteredAt: now,
+    } as never);
     await keepPicked(trx, access, [lot.id, ...(corrected ? [corrected.lotId] : [])]);
     await writeAudit(trx, access, { action: corrected ? 'tickets.correct' : 'tickets.enter', subjectType: 'ticket', subjectId: ticket.id, subjectName: input.ticketNo, after: input, reason: input.note || null });
     return { id: ticket.id };

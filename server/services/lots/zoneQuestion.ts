@@ -113,7 +113,18 @@ async function judgedBefore(estateId: string, ground: BoardGround, block: BoardB
   const before = await Season.query().where({ estateId }).where('startsOn', '<', ground.season.startsOn).orderBy('startsOn', 'desc').first();
   if (!before) return null;
   const readings = (await zonedReadings(estateId, { ground: block.ground, zoneOf: block.zoneOf, seasonId: before.id })).filter(({ excludedReason, zone }) => excludedReason === null && zone > 0);
-  return judged(fruit.flatMap((code) => compareMeans(newestMeans(readings.filter(({ measureCode }) => measureCode === code), { block, decimals: ground.measures.find((measure) => measure.code === code)?.decimals ?? 1 }), { code, unit: '', zones: block.zones.length }) ?? []));
+  return judged(
+    fruit.flatMap(
+      (code) =>
+        compareMeans(
+          newestMeans(
+            readings.filter(({ measureCode }) => measureCode === code),
+            { block, decimals: ground.measures.find((measure) => measure.code === code)?.decimals ?? 1 },
+          ),
+          { code, unit: '', zones: block.zones.length },
+        ) ?? [],
+    ),
+  );
 }
 
 function newestMeans(readings: readonly ZonedReading[], { block, decimals }: { block: BoardBlock; decimals: number }): { zone: number; mean: VisitMean; weight: number }[] {

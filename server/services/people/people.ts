@@ -47,7 +47,15 @@ export async function changeRoles(access: Access, personId: string, change: z.in
     if (added.length > 0) await Membership.query(trx).insert(added.map((role) => ({ estateId: access.estateId, personId, role, endsOn: change.endsOn })));
     if (change.roles.length === 0) await endSessionsOfLeaver(personId, trx);
     const person = await Person.query(trx).findById(personId).throwIfNotFound();
-    await writeAudit(trx, access, { action: change.roles.length === 0 ? 'people.endAccess' : 'people.changeRoles', subjectType: 'person', subjectId: personId, subjectName: person.name, before: { roles: [...held] }, after: { roles: change.roles, endsOn: change.endsOn }, reason: change.reason || null });
+    await writeAudit(trx, access, {
+      action: change.roles.length === 0 ? 'people.endAccess' : 'people.changeRoles',
+      subjectType: 'person',
+      subjectId: personId,
+      subjectName: person.name,
+      before: { roles: [...held] },
+      after: { roles: change.roles, endsOn: change.endsOn },
+      reason: change.reason || null,
+    });
   });
 }
 

@@ -65,7 +65,14 @@ function parse<Item extends { id: string }>(contract: z.ZodType<Item>, raw: unkn
 
 function repeatOutcome(reading: NewReading, stored: Reading): ReadingOutcome {
   const same = stored.value === reading.value && stored.measureCode === reading.measureCode && stored.rowId === reading.rowId && stored.ordinal === reading.ordinal;
-  return same ? { id: reading.id, state: 'received', reason: null } : { id: reading.id, state: 'refused', code: 'otherContent', reason: 'A reading with this id is stored with another value. The first stays; send a correction under an id of its own.' };
+  return same
+    ? { id: reading.id, state: 'received', reason: null }
+    : {
+        id: reading.id,
+        state: 'refused',
+        code: 'otherContent',
+        reason: 'A reading with this id is stored with another value. The first stays; send a correction under an id of its own.',
+      };
 }
 
 /** A walk that began out of reach: its first reading tells that it is under way. */

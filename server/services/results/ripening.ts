@@ -98,7 +98,19 @@ function loadingOf(zone: number, { values }: { values: readonly ZoneResult[] }):
   const { confidence } = of('brix', to)!;
   const change = loadingChange(state(from), state(to), confidence);
   const told = (half: number) => (Number.isNaN(half) ? null : half);
-  return { zone, from, to, word: change.word, confidence, sugarMg: change.sugarMg.value, sugarHalfWidth: told(change.sugarMg.halfWidth), brix: change.brix.value, brixHalfWidth: told(change.brix.halfWidth), berryWeightG: change.berryWeightG.value, berryWeightHalfWidth: told(change.berryWeightG.halfWidth) };
+  return {
+    zone,
+    from,
+    to,
+    word: change.word,
+    confidence,
+    sugarMg: change.sugarMg.value,
+    sugarHalfWidth: told(change.sugarMg.halfWidth),
+    brix: change.brix.value,
+    brixHalfWidth: told(change.brix.halfWidth),
+    berryWeightG: change.berryWeightG.value,
+    berryWeightHalfWidth: told(change.berryWeightG.halfWidth),
+  };
 }
 
 interface Made {

@@ -103,8 +103,18 @@ async function tell(trx: Transaction, { access, plan, input, people, walk, link 
     if (person.email === null) continue;
     const date = new Intl.DateTimeFormat(person.language, { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long' }).format(new Date(`${input.onDate}T12:00:00Z`));
     await queueMail(trx, {
-      estateId: access.estateId, kind: 'assignment', to: { address: person.email, name: person.name, language: person.language },
-      facts: { estate: estate.name, block: basis.blockName, date, vines: walk.shares[i]!.stops.length, gate: input.gate || '–', link, notes: [closed && closedWords(closed, person.language, estate.timeZone), input.notes].filter(Boolean).join('\n\n') },
+      estateId: access.estateId,
+      kind: 'assignment',
+      to: { address: person.email, name: person.name, language: person.language },
+      facts: {
+        estate: estate.name,
+        block: basis.blockName,
+        date,
+        vines: walk.shares[i]!.stops.length,
+        gate: input.gate || '–',
+        link,
+        notes: [closed && closedWords(closed, person.language, estate.timeZone), input.notes].filter(Boolean).join('\n\n'),
+      },
     });
   }
 }

@@ -77,10 +77,24 @@ async function wantedOf(access: Access, { id, onDate }: Round, how: { per: BagsP
     if (how.per === 'zone' && seen.has(stop.zone)) return [];
     seen.add(stop.zone);
     const measureCodes = how.per === 'vine' ? stop.measures : [...new Set(stops.filter(({ zone }) => zone === stop.zone).flatMap(({ measures }) => measures))];
-    return [{
-      personId: access.personId!, targetId: how.per === 'vine' ? stop.targetId : null, zoneId: zoneIds.get(stop.targetId) ?? null, number: stop.number, measureCodes,
-      facts: { block: field.blockName, date, zone: zoneWords(field, stop.zone), vine: how.per === 'vine' ? { row: stop.rowLabel, number: stop.vineNumber, place: stop.place } : null, stop: stop.number, measures: wordsOf(field, measureCodes, how.language), person: how.person },
-    }];
+    return [
+      {
+        personId: access.personId!,
+        targetId: how.per === 'vine' ? stop.targetId : null,
+        zoneId: zoneIds.get(stop.targetId) ?? null,
+        number: stop.number,
+        measureCodes,
+        facts: {
+          block: field.blockName,
+          date,
+          zone: zoneWords(field, stop.zone),
+          vine: how.per === 'vine' ? { row: stop.rowLabel, number: stop.vineNumber, place: stop.place } : null,
+          stop: stop.number,
+          measures: wordsOf(field, measureCodes, how.language),
+          person: how.person,
+        },
+      },
+    ];
   });
 }
 

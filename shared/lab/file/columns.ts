@@ -41,7 +41,14 @@ export function looseValues(found: LabTable, measures: readonly LabMeasure[], as
   const roles = table.titles.map((title) => roleOfTitle(title, measures));
   const at = (kind: string) => roles.findIndex((role, column) => role.kind === kind && column !== table.codeColumn);
   const temperatureColumn = at('temperature') < 0 ? null : at('temperature');
-  const parts = { dateColumn: dayColumn(table.titles.filter((_, column) => roles[column]!.kind === 'date' && column !== table.codeColumn), table), temperatureColumn, isFahrenheit: temperatureColumn !== null && isFahrenheit(table.titles[temperatureColumn] ?? '') };
+  const parts = {
+    dateColumn: dayColumn(
+      table.titles.filter((_, column) => roles[column]!.kind === 'date' && column !== table.codeColumn),
+      table,
+    ),
+    temperatureColumn,
+    isFahrenheit: temperatureColumn !== null && isFahrenheit(table.titles[temperatureColumn] ?? ''),
+  };
   const wordColumn = longColumn(table, measures);
   if (wordColumn !== null) return { ...parts, ...readLong(table, { measures, wordColumn, asking }) };
   const values: LooseValue[] = [];

@@ -61,7 +61,18 @@ export function readValues(values: readonly LooseValue[], reading: Reading, aski
     }
     const unitTyped = labUnit(value.unit)?.shown ?? measure.unit;
     sayOnce(value, { shown: cellText(value.cell), read: Number(own.toFixed(measure.decimals + 1)), unit: measure.unit, unitTyped, below: figure.below }, asking);
-    entries.push({ line: value.line, code, measure: measure.code, value: Number(own.toFixed(6)), below: figure.below, typed: cellText(value.cell).slice(0, 40), unitTyped, analysedOn: reading.dates.get(value.line) ?? null, odd: !isUsual(measure, own), corrected });
+    entries.push({
+      line: value.line,
+      code,
+      measure: measure.code,
+      value: Number(own.toFixed(6)),
+      below: figure.below,
+      typed: cellText(value.cell).slice(0, 40),
+      unitTyped,
+      analysedOn: reading.dates.get(value.line) ?? null,
+      odd: !isUsual(measure, own),
+      corrected,
+    });
   }
   return entries;
 }

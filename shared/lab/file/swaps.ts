@@ -30,7 +30,17 @@ export function mendSwap(table: LabTable, measures: readonly LabMeasure[], askin
       const [oneHere, otherHere, oneThere, otherThere] = [fits(one.column, one.measure), fits(other.column, other.measure), fits(one.column, other.measure), fits(other.column, one.measure)];
       if (oneHere === null || otherHere === null || Math.min(oneHere, otherHere) > 1 - mostly || Math.min(oneThere ?? 0, otherThere ?? 0) < mostly) continue;
       const example = table.rows.find(({ cells }) => !isBlank(cells[one.column]) && !isBlank(cells[other.column]));
-      const answer = asking.ask('swapped', { code: 'swapped', params: { one: one.title, other: other.title, oneFound: cellText(example?.cells[one.column]), otherFound: cellText(example?.cells[other.column]) }, choices: ['swap', 'stay'], suggestion: 'swap' });
+      const answer = asking.ask('swapped', {
+        code: 'swapped',
+        params: {
+          one: one.title,
+          other: other.title,
+          oneFound: cellText(example?.cells[one.column]),
+          otherFound: cellText(example?.cells[other.column]),
+        },
+        choices: ['swap', 'stay'],
+        suggestion: 'swap',
+      });
       if (answer === 'stay') return table;
       // Until it is answered nothing is read of columns that may be each other's.
       if (answer === null) return { ...table, rows: [] };

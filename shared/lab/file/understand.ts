@@ -40,7 +40,15 @@ function readFile(file: RawLabFile, around: LabSurroundings, asking: Asking): { 
   const labels = matchLabels(table.rows.filter(({ line }) => filled.has(line)).map(({ line, cells }) => ({ line, cell: cells[table.codeColumn] ?? null })), around.labels, asking);
   const sampled = loose.values.filter(({ line }) => labels.has(line));
   const values = mendMarks(settleColumns(sampled, asking), around.measures, asking);
-  const days = readDates(new Map(loose.dateColumn === null ? [] : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null])), { earliest: earliestClosing(around, labels), today: around.today }, asking);
+  const days = readDates(
+    new Map(
+      loose.dateColumn === null
+        ? []
+        : table.rows.filter(({ line }) => labels.has(line)).map(({ line, cells }) => [line, cells[loose.dateColumn!] ?? null]),
+    ),
+    { earliest: earliestClosing(around, labels), today: around.today },
+    asking,
+  );
   const closings = new Map(around.labels.map(({ code, closedOn }) => [code, closedOn]));
   const dates = settleDays(days, { closedOn: (line) => closings.get(labels.get(line) ?? '') ?? null, today: around.today }, asking);
   if (loose.values.length === 0 && asking.questions.length === 0) asking.say('noResults');

@@ -104,6 +104,8 @@ export const zoningView = z.object({
   fruit: z.array(z.object({ measure: z.string(), on: z.array(z.string()), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
   /** The zones that its edits begin with were changed by hand in the version it was taken up from. */
   beginsByHand: z.boolean(),
+  /** The number of the version that its edits begin with; null where they begin with zones as computed. */
+  takenUpFrom: z.number().int().nullable(),
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),

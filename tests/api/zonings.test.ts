@@ -513,12 +513,12 @@ describe('publishing', () => {
     const edited = await edit(copy.id, { kind: 'rename', zone: 2, name: 'Fond' });
     expect(edited.zones.map((zone) => [zone.name, zone.doubtfulShare])).toEqual([['Crête', old.zones[0]!.doubtfulShare], ['Fond', old.zones[1]!.doubtfulShare]]);
     // Ground that was given by hand is where the next draft begins, and it says so; a number kept anew is as computed.
-    expect(old.beginsByHand).toBe(false);
+    expect([old.beginsByHand, old.takenUpFrom, copy.takenUpFrom]).toEqual([false, null, old.number]);
     await edit(copy.id, { kind: 'merge', zones: [1], into: 2 });
     const again = await view((await manager.post(`${base()}/zonings/${copy.id}/restore`)).body.id as string);
-    expect([again.zones.length, again.beginsByHand]).toEqual([1, true]);
+    expect([again.zones.length, again.beginsByHand, again.takenUpFrom]).toEqual([1, true, copy.number]);
     const anew = (await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body as ZoningView;
-    expect([anew.zones.length, anew.beginsByHand]).toEqual([3, false]);
+    expect([anew.zones.length, anew.beginsByHand, anew.takenUpFrom]).toEqual([3, false, null]);
   });
 
   it('compares two zonings vine by vine', async () => {

@@ -10,6 +10,7 @@ import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type Z
 import { sampleSize } from '../../../shared/sampling/sampleSize.ts';
 import type { Access } from '../../access/access.ts';
 import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { AuditEntry } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import { Job } from '../../models/Job.ts';
@@ -107,6 +108,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
     fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, on: evidence?.fruitDays?.[measure] ?? [], n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
     beginsByHand: showsKept && candidate !== undefined && !zoning.baseLabels!.equals(candidate.labels),
+    takenUpFrom: kept ? await takenUpFrom(access, zoningId) : null,
     shown: count,
     zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
     problem: job?.problem ?? null,
@@ -116,6 +118,12 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
 /** The number of zones that was asked for, where it was not left to the advice. */
 function fixedNumber(options: ZoningRequestOptions | undefined): number | null {
   return options === undefined || options.zones === 'advise' ? null : options.zones;
+}
+
+/** The version a draft was taken up from, unless a number of zones was kept anew since. */
+async function takenUpFrom({ estateId }: Access, zoningId: string): Promise<number | null> {
+  const begun = await AuditEntry.query().where({ estateId, subjectType: 'zoning', subjectId: zoningId }).whereIn('action', ['zones.restore', 'zones.keep']).orderBy('id', 'desc').first();
+  return begun?.action === 'zones.restore' ? (begun.after as { from: number }).from : null;
 }
 
 async function layersOf(access: Access, layerIds: string[], evidence: StoredEvidence | null): Promise<ZoningView['layers']> {

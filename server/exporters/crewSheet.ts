@@ -87,6 +87,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}${texts.colon}${targets}`).join('   '), { width });
   drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
+  const sided = isWithoutRows(round) ? [] : round.measures.flatMap(({ rowSide = 'either', code, name }) => (rowSide === 'either' ? [] : [`${measureWords[language]?.[code] ?? (name || code)}, ${texts.sides[rowSide]}`]));
   const handfuls = round.measures.flatMap(({ handful, ...measure }) =>
     handful
       ? [
@@ -96,6 +97,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   );
   const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
   if (inBag.length > 0) pdf.text(`${texts.bag}${texts.colon}${inBag.join(', ')}`, { width });
+  if (sided.length > 0) pdf.font('Helvetica-Bold').text(`${texts.side}${texts.colon}${sided.join('; ')}`, { width }).font('Helvetica');
   if (handfuls.length > 0) pdf.text(`${texts.ofEach}${texts.colon}${handfuls.join('; ')}`, { width });
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);

@@ -3,12 +3,13 @@ import type { BlockRows } from '../../shared/geo/rows.ts';
 import { sheetOfBlock, shareBlockWalk, type BlockWalk } from '../../shared/sampling/walkBlock.ts';
 import type { PaceChoices } from '../../shared/contracts/planChoices.ts';
 import { pacedGround, type Terrain } from '../../shared/sampling/terrain.ts';
+import type { AlleySide } from '../../shared/sampling/rowSide.ts';
 import type { SheetLine } from '../../shared/sampling/walkSheet.ts';
 import { walkTime } from '../../shared/sampling/walkTime.ts';
 
 export interface ShareInput {
   rows: BlockRows;
-  vines: { rowIndex: number; ordinal: number; zone: number; serviceS: number }[];
+  vines: { rowIndex: number; ordinal: number; side?: AlleySide; zone: number; serviceS: number }[];
   gateXY: XY;
   people: number;
   pace: PaceChoices;

@@ -1,3 +1,4 @@
+import type { RowSide } from '../../shared/catalog/measures.ts';
 import { EstateModel } from './BaseModel.ts';
 
 export class MeasureRecord extends EstateModel {
@@ -21,5 +22,6 @@ export class MeasureRecord extends EstateModel {
   declare weighting: 'vines' | 'mass';
   declare skewed: boolean;
   declare measuredIn: 'field' | 'lab';
+  declare rowSide: RowSide;
   declare inUse: boolean;
 }

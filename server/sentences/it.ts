@@ -226,6 +226,7 @@ export const it: Record<SentenceKey, string> = {
   unreadable: 'Questa richiesta non si è potuta leggere. Controllarne la forma e riprovare.',
   fault: 'Qualcosa è andato storto da parte nostra. Nulla è stato cambiato; riprovare e avvisarci se continua.',
   aName: 'nome',
+  measuresOnBothSides: '{one} e {other} si leggono da lati diversi dei filari di {block}; un giro passa da un solo lato di ogni ceppo. Fare un piano per ogni misura.',
   tooManyToDraw: 'Questo piano chiede {n} ceppi; se ne estraggono al massimo {most} alla volta. Allargare i margini, abbassare la confidenza o campionare zone insieme.',
   noVines: 'Nessuna zona di {block} ha una vite da campionare: tutte le sue viti sono segnate come mancanti, rimpiazzate o fuori tipo. Guardi i segni delle viti nei filari del vigneto, poi pianifichi.',
   rowsAtStake: 'I filari di {block} sarebbero ricostruiti: {losses}. Invii rowsMayGo con la modifica per farlo comunque.',

@@ -226,6 +226,7 @@ export const pt: Record<SentenceKey, string> = {
   unreadable: 'Não foi possível ler este pedido. Verifique a sua forma e tente de novo.',
   fault: 'Algo falhou do nosso lado. Nada foi alterado; tente de novo e avise-nos se continuar.',
   aName: 'nome',
+  measuresOnBothSides: '{one} e {other} leem-se de lados diferentes dos bardos de {block}; um percurso passa de um só lado de cada cepa. Faça um plano para cada medida.',
   tooManyToDraw: 'Este plano pede {n} cepas; sorteiam-se no máximo {most} de cada vez. Alargue as margens, baixe a confiança ou amostre zonas juntas.',
   noVines: 'Nenhuma zona de {block} tem uma cepa para amostrar: todas estão marcadas como falha, retancha ou outra casta. Veja as marcas das cepas nos bardos da parcela e depois faça o plano.',
   rowsAtStake: 'Os bardos de {block} seriam feitos de novo: {losses}. Para o fazer mesmo assim, envie rowsMayGo com a alteração.',

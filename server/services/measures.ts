@@ -33,9 +33,9 @@ export async function changeMeasure(access: Access, measureId: string, change: M
 }
 
 function viewOf(row: MeasureRecord): MeasureView {
-  const { id, code, name, unit, decimals, minimum, maximum, marginKind, margin, spreadKind, spreadValue, spreadSource, typicalMean, secondsPerSample, weighting, skewed, measuredIn, inUse } = row;
+  const { id, code, name, unit, decimals, minimum, maximum, marginKind, margin, spreadKind, spreadValue, spreadSource, typicalMean, secondsPerSample, weighting, skewed, measuredIn, rowSide, inUse } = row;
   return {
-    ...{ id, code, name, unit, decimals, minimum, maximum, marginKind, margin, spreadKind, spreadValue, spreadSource, typicalMean, secondsPerSample, weighting, skewed, measuredIn, inUse },
+    ...{ id, code, name, unit, decimals, minimum, maximum, marginKind, margin, spreadKind, spreadValue, spreadSource, typicalMean, secondsPerSample, weighting, skewed, measuredIn, rowSide, inUse },
     confidence: row.confidence as MeasureView['confidence'],
     sampledUnit: row.sampledUnit as MeasureView['sampledUnit'],
   };

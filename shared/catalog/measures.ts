@@ -1,4 +1,7 @@
 export type MarginKind = 'absolute' | 'relative';
+/** Face of the row from which a measure is taken, by the compass; either: whichever lies on the way. */
+export const rowSides = ['either', 'north', 'east', 'south', 'west'] as const;
+export type RowSide = (typeof rowSides)[number];
 export type SampledUnit = 'vine' | 'cluster' | 'berryLot';
 
 export interface Measure {

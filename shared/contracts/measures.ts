@@ -1,8 +1,9 @@
 import { z } from 'zod';
-import { confidences } from '../catalog/measures.ts';
+import { confidences, rowSides } from '../catalog/measures.ts';
 import { id } from './common.ts';
 
 export const confidence = z.literal(confidences);
+export const rowSide = z.enum(rowSides);
 export const marginKind = z.enum(['absolute', 'relative']);
 
 const positive = z.number().positive();
@@ -25,6 +26,7 @@ const facts = {
   weighting: z.enum(['vines', 'mass']),
   skewed: z.boolean(),
   measuredIn: z.enum(['field', 'lab']),
+  rowSide,
   inUse: z.boolean(),
 };
 
@@ -46,6 +48,7 @@ export const newMeasure = z
     weighting: facts.weighting.default('vines'),
     skewed: facts.skewed.default(false),
     measuredIn: facts.measuredIn.default('field'),
+    rowSide: rowSide.default('either'),
     inUse: facts.inUse.default(true),
   })
   .refine(inOrder, inOrderMessage);

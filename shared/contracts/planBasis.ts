@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { id } from './common.ts';
-import { confidence, marginKind } from './measures.ts';
+import { confidence, marginKind, rowSide } from './measures.ts';
 
 const spreadKind = z.enum(['sd', 'cv']);
 
@@ -39,6 +39,7 @@ export const basisMeasure = z.object({
   skewed: z.boolean(),
   measuredIn: z.enum(['field', 'lab']),
   sampledUnit: z.string().default('vine'),
+  rowSide: rowSide.default('either'),
   tradeSource: z.string(),
   /** One a zone, in the order of the zones. */
   spreads: z.array(basisSpread),

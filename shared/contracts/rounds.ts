@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { id, isoDate, lonLat } from './common.ts';
+import { rowSide } from './measures.ts';
 import { vineWords } from './plans.ts';
 import { dayQuestion } from './planWalks.ts';
 import { postColour } from './blocks.ts';
@@ -113,6 +114,8 @@ export const fieldMeasure = z.object({
   confidence: z.number(),
   skewed: z.boolean(),
   measuredIn: z.enum(['field', 'lab']),
+  /** Face of the row from which it is taken; left out: either. */
+  rowSide: rowSide.optional(),
   /** Clusters to take of a vine, and berries of each, where the plan says so. */
   handful: z.object({ perVine: z.number().int(), perCluster: z.number().int().nullable() }).nullable().optional(),
 });

@@ -2,6 +2,7 @@ import type { XY } from '../geo/coordinates.ts';
 import type { BlockRows } from '../geo/rows.ts';
 import type { VineTable } from '../geo/vines.ts';
 import type { EligibleRule } from './eligible.ts';
+import { sideFor } from './rowSide.ts';
 import { drawTargets, type ZoneDraw } from './targets.ts';
 import { walkBlock } from './walkBlock.ts';
 import { walkTime, type PacedGround } from './walkTime.ts';
@@ -20,6 +21,8 @@ export interface PlanDrawRequest {
   /** Vines of each zone, and samples of each measure there. */
   readonly wanted: readonly { readonly zone: number; readonly visits: number; readonly counts: readonly number[] }[];
   readonly measures: readonly string[];
+  /** Side of the row that a measure asks for, by its code. */
+  readonly sides?: Readonly<Record<string, 'low' | 'high'>>;
   /** Seconds at a vine of a zone for the measures taken there. */
   readonly secondsAt: (zone: number, measures: readonly string[]) => number;
   readonly reserveShare?: number;
@@ -55,12 +58,12 @@ export const MOST_TARGETS = 600;
 
 /** Target vines of a plan in walking order, and what the walk from the gate and back takes. */
 export function drawPlan(request: PlanDrawRequest): PlanDraw {
-  const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, secondsAt, seed, reserveShare } = request;
+  const { rows, table, zoneOfVine, unusable, nearBorder, rule, gateXY, wanted, measures, sides = {}, secondsAt, seed, reserveShare } = request;
   const zones = drawTargets({ table, zoneOfVine, unusable, seed, ...(nearBorder ? { nearBorder } : {}), ...(rule ? { rule } : {}), ...(reserveShare === undefined ? {} : { reserveShare }), wanted: wanted.map(({ zone, visits }) => ({ zone, count: visits })) });
   const drawn = zones.flatMap((draw, i) =>
     draw.targets.map((target) => ({ ...target, zone: draw.zone, measures: measures.filter((_, j) => target.drawOrder <= wanted[i]!.counts[j]!) })));
   if (drawn.length === 0) return { zones, targets: [], lengthM: 0, walkingS: 0, serviceS: 0, isGroundAssumedOpen: false };
-  const { walk, assumedOpen } = walkBlock({ rows, vines: drawn, gateXY, ...(request.ground ? { ground: request.ground } : {}) });
+  const { walk, assumedOpen } = walkBlock({ rows, vines: drawn.map((vine) => ({ ...vine, side: sideFor(vine.measures, sides) })), gateXY, ...(request.ground ? { ground: request.ground } : {}) });
   const time = walkTime(walk, (target) => secondsAt(drawn[target]!.zone, drawn[target]!.measures));
   return {
     zones,

@@ -3,6 +3,7 @@ import type { XY } from '../geo/coordinates.ts';
 import { type RowFrame, toAlongAcross } from '../geo/rowFrame.ts';
 import type { PieceXY, RowsXY, RowXY } from '../geo/rowsLayout.ts';
 import { vineXY } from '../geo/vines.ts';
+import type { AlleySide } from './rowSide.ts';
 import type { Alley, AlleyGap, AlleyLayout, WalkTarget } from './walkLayout.ts';
 
 /**
@@ -61,7 +62,7 @@ export interface VineToVisit {
   readonly rowIndex: number;
   readonly ordinal: number;
   /** The face of the canopy that the measure needs; either by default. */
-  readonly side?: 'either' | 'low' | 'high';
+  readonly side?: AlleySide;
 }
 
 /** The alleys from which a vine can be served, shut ones left out, and its place along them: NaN when there is no such vine. */

@@ -37,7 +37,7 @@ function basisOf(zoneOfVine: Uint8Array): PlanBasis {
   const measures = codes.map((code) => {
     const { unit, decimals, margin, marginKind, secondsPerSample, skewed, where, defaultSpread, typicalMean } = catalogue.find((one) => one.code === code)!;
     const spreads = zones.map((_, i) => ({ kind: defaultSpread.kind, value: defaultSpread.value * (0.8 + i / 10), cautious: defaultSpread.value, source: 'trade' as const, n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: typicalMean, isMeanAssumed: true }));
-    return { code, name: '', unit, decimals, margin, marginKind, confidence: 0.95 as const, secondsPerSample, skewed, measuredIn: where, sampledUnit: 'vine', tradeSource: defaultSpread.source, spreads, pilots: zones.map(() => null) };
+    return { code, name: '', unit, decimals, margin, marginKind, confidence: 0.95 as const, secondsPerSample, skewed, measuredIn: where, sampledUnit: 'vine', rowSide: 'either' as const, tradeSource: defaultSpread.source, spreads, pilots: zones.map(() => null) };
   });
   return { zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', zones, measures, pilot: null, walks: [], isWalkLaid: false, settings: { floorVines: 5, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' } };
 }

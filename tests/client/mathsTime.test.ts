@@ -13,7 +13,7 @@ const spread = { kind: 'sd' as const, value: 0.9, cautious: 1.1, source: 'trade'
 const basis: PlanBasis = {
   zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
   zones: [1, 2].map((number) => ({ id: '', number, name: '', colour: null, vines: 9000, eligible: 9000 })),
-  measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 2, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [spread, spread], pilots: [null, null] }],
+  measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 2, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '', spreads: [spread, spread], pilots: [null, null] }],
   walks: [{ vines: 20, levelS: 1000, slopedS: 1200 }], isWalkLaid: false, settings: { floorVines: 10, impracticalSamples: 60, dayHours: 8, costPerHour: 36, currency: 'EUR' },
 };
 

@@ -6,7 +6,7 @@ import { answerPlan } from '../../shared/sampling/plan.ts';
 import { usePlanChoices } from '../../src/composables/usePlanChoices.ts';
 
 const measure = (code: string, spreads: readonly number[]): PlanBasis['measures'][number] => ({
-  code, name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '',
+  code, name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '',
   spreads: spreads.map((value, i) => ({ kind: 'sd', value, cautious: value * 1.2, source: 'trade', n: 0, seasons: [], df: null, outliers: 0, withOutliers: null, withoutOutliers: null, expectedMean: 20 + i / 4, isMeanAssumed: true })),
   pilots: [null, null, null],
 });

@@ -13,7 +13,7 @@ const spread = { kind: 'sd' as const, value: 0.9, cautious: 1.1, source: 'trade'
 const basis: PlanBasis = {
   zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
   zones: [{ id: '', number: 1, name: 'Top', colour: null, vines: 9000, eligible: 9000 }],
-  measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [spread], pilots: [null] }],
+  measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '', spreads: [spread], pilots: [null] }],
   walks: [], isWalkLaid: false, settings: { floorVines: 10, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' },
 };
 

@@ -13,7 +13,7 @@ function basis(vines: readonly number[], pilots: readonly (PilotReadings | null)
   return {
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: vines.map((count, i) => ({ id: '', number: i + 1, name: '', colour: null, vines: count, eligible: count })),
-    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: vines.map(() => assumed), pilots: [...pilots] }],
+    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '', spreads: vines.map(() => assumed), pilots: [...pilots] }],
     walks: [], isWalkLaid: false, settings: { floorVines: 2, impracticalSamples: 60, dayHours: 80, costPerHour: 20, currency: 'EUR' },
   };
 }

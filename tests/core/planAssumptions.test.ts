@@ -15,7 +15,7 @@ function basis(pilots: PlanBasis['measures'][number]['pilots'] = [null, null, nu
   return {
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: [900, 600, 300].map((vines, i) => ({ id: '', number: i + 1, name: '', colour: null, vines, eligible: vines })),
-    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [1.1, 0.8, 1.5].map(spread), pilots }],
+    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '', spreads: [1.1, 0.8, 1.5].map(spread), pilots }],
     walks: [], isWalkLaid: false, settings: { floorVines: 2, impracticalSamples: 60, dayHours: 8, costPerHour: 20, currency: 'EUR' },
   };
 }

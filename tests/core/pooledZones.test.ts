@@ -12,7 +12,7 @@ function basis(spreads: readonly BasisSpread[], vines: readonly number[] = [100,
   return {
     zoningId: '', zoningNumber: 1, blockId: '', blockName: '', seasonId: '', seasonName: '', pilot: null,
     zones: vines.map((count, i) => ({ id: `zone ${i + 1}`, number: i + 1, name: i === 1 ? '' : `Strip ${i + 1}`, colour: null, vines: count, eligible: count - 20 })),
-    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', tradeSource: '', spreads: [...spreads], pilots: spreads.map(() => ({ n: 10, df: 9, spread: 1, mean: 22 })) }],
+    measures: [{ code: 'brix', name: '', unit: '°Brix', decimals: 1, margin: 0.5, marginKind: 'absolute', confidence: 0.95, secondsPerSample: 60, skewed: false, measuredIn: 'lab', sampledUnit: 'vine', rowSide: 'either', tradeSource: '', spreads: [...spreads], pilots: spreads.map(() => ({ n: 10, df: 9, spread: 1, mean: 22 })) }],
     walks: [], isWalkLaid: false, settings: { floorVines: 2, impracticalSamples: 60, dayHours: 100, costPerHour: 20, currency: 'EUR' },
   };
 }

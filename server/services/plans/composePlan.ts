@@ -2,12 +2,14 @@ import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import type { Labels } from '../../../shared/analysis/grid.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
 import type { PlanChoices } from '../../../shared/contracts/planChoices.ts';
+import type { RowFrame } from '../../../shared/geo/rowFrame.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 import { MOST_TARGETS, type PlanDraw } from '../../../shared/sampling/drawPlan.ts';
 import { vinesNearBorder } from '../../../shared/sampling/eligibleBorder.ts';
 import { answerPlan, type PlanAnswer, type TimesAtVine } from '../../../shared/sampling/plan.ts';
 import type { PlanQuestion } from '../../../shared/sampling/planQuestion.ts';
 import { headOf } from '../../../shared/sampling/pooledZones.ts';
+import { alleySides } from '../../../shared/sampling/rowSide.ts';
 import { walksAsLaid } from '../../../shared/sampling/walkEstimate.ts';
 import { Unusable } from '../../errors.ts';
 import { gridOf } from '../../ground/blockVines.ts';
@@ -45,6 +47,7 @@ export async function composePlan(estateId: string, zoningId: string, made: { ch
     rows: ground.rows, table: ground.vines, ...sampledZones(planGround, choices), unusable, gateXY, rule: choices.draw, pace: choices.pace, terrain, times: timesOf(answer.question),
     wanted: answer.counts.zones.map(({ zone, visits, counts }) => ({ zone: Number(zone), visits, counts })),
     measures: answer.question.measures.map(({ code }) => code),
+    sides: sidesOf(basis, choices, ground.rows.frame),
     reserveShare: choices.reserveShare,
     seed: made.seed,
   };
@@ -53,6 +56,16 @@ export async function composePlan(estateId: string, zoningId: string, made: { ch
   const walks = walksAsLaid(basis.walks, { vines: draw.targets.length, walkingS: draw.walkingS }, choices.pace);
   const laid = { ...basis, walks, isWalkLaid: walks.length > 0 && draw.targets.length > 0 };
   return { choices, planGround, basis: laid, answer: answerPlan(laid, choices), draw };
+}
+
+/** Sides of the rows that the chosen measures ask for; refused where they ask for both, as one walk passes a vine on one side. */
+function sidesOf({ measures, blockName }: PlanBasis, { measures: chosen }: PlanChoices, frame: RowFrame): Record<string, 'low' | 'high'> {
+  const asked = measures.filter(({ code }) => chosen.some((choice) => choice.code === code));
+  const sides = alleySides(frame, asked);
+  const nameOn = (side: 'low' | 'high') => asked.find(({ code }) => sides[code] === side);
+  const [low, high] = [nameOn('low'), nameOn('high')];
+  if (low && high) throw new Unusable('bothSides', say('measuresOnBothSides', { one: low.name || low.code, other: high.name || high.code, block: blockName }));
+  return sides;
 }
 
 /** A question estimates walks with a function, which cannot cross to a thread. */

@@ -73,9 +73,9 @@ export async function loadPlanBasis(estateId: string, planGround: PlanGround, ho
 }
 
 function basisMeasure(measure: MeasureRecord, history: { block: string; zones: string[]; season: number; readings: HistoryReading[]; ofPilot: HistoryReading[]; how: SpreadChoices }): BasisMeasure {
-  const { code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit, spreadKind, spreadValue, spreadSource, typicalMean } = measure;
+  const { code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit, rowSide, spreadKind, spreadValue, spreadSource, typicalMean } = measure;
   return {
-    code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit,
+    code, name, unit, decimals, margin, marginKind, secondsPerSample, skewed, measuredIn, sampledUnit, rowSide,
     confidence: measure.confidence as BasisMeasure['confidence'],
     tradeSource: spreadSource,
     spreads: spreadsOf({ ...history, tradeDefault: { kind: spreadKind, value: spreadValue }, typicalMean, resolution: 10 ** -decimals }),

@@ -47,11 +47,13 @@ export function sampledZones(plan: Plan): { basis: PlanBasis; sampledZoneOf: Map
 /** Measures of a plan with the margin and confidence that were chosen for it. */
 export async function measuresOfPlan(estateId: string, plan: Plan): Promise<FieldMeasure[]> {
   const chosen = planChoices.parse(plan.options).measures;
+  const { basis } = plan.result as { basis: PlanBasis };
+  const sideOf = new Map(basis.measures.map(({ code, rowSide }) => [code, rowSide ?? 'either']));
   const rows = await MeasureRecord.query().where({ estateId }).whereIn('code', chosen.map(({ code }) => code));
   return chosen.flatMap((choice) => {
     const row = rows.find(({ code }) => code === choice.code);
     if (!row) return [];
     const { code, name, unit, decimals, minimum, maximum, skewed, measuredIn } = row;
-    return [{ code, name, unit, decimals, minimum, maximum, skewed, measuredIn, margin: choice.margin ?? row.margin, marginKind: choice.marginKind ?? row.marginKind, confidence: choice.confidence ?? row.confidence, handful: choice.handful ? { perVine: choice.handful.perVine, perCluster: choice.handful.perCluster } : null }];
+    return [{ code, name, unit, decimals, minimum, maximum, skewed, measuredIn, rowSide: sideOf.get(code) ?? 'either', margin: choice.margin ?? row.margin, marginKind: choice.marginKind ?? row.marginKind, confidence: choice.confidence ?? row.confidence, handful: choice.handful ? { perVine: choice.handful.perVine, perCluster: choice.handful.perCluster } : null }];
   });
 }

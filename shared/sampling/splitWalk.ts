@@ -29,6 +29,8 @@ export function splitWalk(input: SplitInput): Split {
   if (!Number.isInteger(people) || people < 1) throw new AnalysisError('bad-count', `A walk cannot be shared among ${people} people; give a whole number from 1.`);
   if (people > targetCount) throw new AnalysisError('too-many-people', `Vines of the walk: ${targetCount}; people: ${people}; send at most ${targetCount}.`);
   const loadOf = remembered(input.loadOf);
+  // The load of a large walk is dear, and there is nothing to search.
+  if (people === 1) return { cuts: [], loads: [loadOf(0, targetCount)], isEven: true };
   const cuts = leastLargest({ ...input, loadOf });
   const loads = loadsOf(cuts, targetCount, loadOf);
   if (isWithin(loads, evenness)) return { cuts, loads, isEven: true };
@@ -41,12 +43,18 @@ export function splitWalk(input: SplitInput): Split {
   return { cuts: fairest, loads: loadsOf(fairest, targetCount, loadOf), isEven: false };
 }
 
+/** Each load of many targets takes tenths of a second: there the search ends within one percent of the least largest. */
+const manyTargets = 250;
+
 function leastLargest({ targetCount, people, loadOf }: SplitInput): number[] {
-  let low = 0;
+  const closeEnough = targetCount > manyTargets ? 0.01 : 1e-9;
   let high = loadOf(0, targetCount);
+  // All walks and the ways back are a walk past all: together they take at least half of it, and the largest a fair share of that.
+  let low = high / (2 * people) - 1e-9 * high;
+  const fairShare = (1.02 * high) / people;
   let best = greedyCuts({ targetCount, people, loadOf }, high)!;
-  for (let round = 0; round < 60 && high - low > 1e-9 * high; round++) {
-    const limit = (low + high) / 2;
+  for (let round = 0; round < 60 && high - low > closeEnough * high; round++) {
+    const limit = round === 0 && fairShare < high ? fairShare : (low + high) / 2;
     const cuts = greedyCuts({ targetCount, people, loadOf }, limit);
     if (cuts === null) low = limit;
     else {
@@ -82,7 +90,7 @@ function greedyCuts({ targetCount, people, loadOf }: SplitInput, limit: number):
   let from = 0;
   for (let person = 1; person <= people; person++) {
     const furthest = targetCount - (people - person);
-    const to = longestRun(loadOf, { from, furthest, limit });
+    const to = longestRun(loadOf, { from, furthest, limit, targetCount });
     if (to === from) return null;
     if (person === people) return to === targetCount ? cuts : null;
     cuts.push(to);
@@ -91,14 +99,17 @@ function greedyCuts({ targetCount, people, loadOf }: SplitInput, limit: number):
   return null;
 }
 
-/** The largest `to` with a load within the limit; `from` when not even one target is. */
-function longestRun(loadOf: SplitInput['loadOf'], { from, furthest, limit }: { from: number; furthest: number; limit: number }): number {
-  let low = from;
-  let high = furthest;
+/** The largest `to` with a load within the limit; `from` when not even one target is. Looks first where an even walk would come to, then farther and farther from there. */
+function longestRun(loadOf: SplitInput['loadOf'], { from, furthest, limit, targetCount }: { from: number; furthest: number; limit: number; targetCount: number }): number {
+  let [low, high, step] = [from, furthest, 1];
+  let next = from + Math.round((limit * targetCount) / Math.max(loadOf(0, targetCount), Number.MIN_VALUE));
   while (low < high) {
-    const middle = (low + high + 1) >> 1;
-    if (loadOf(from, middle) <= limit) low = middle;
-    else high = middle - 1;
+    const tried = Math.min(high, Math.max(low + 1, next));
+    const fits = loadOf(from, tried) <= limit;
+    if (fits) low = tried;
+    else high = tried - 1;
+    next = low > from && high < furthest ? (low + high + 1) >> 1 : fits ? low + step : high - step;
+    step *= 2;
   }
   return low;
 }
@@ -109,7 +120,7 @@ function cutsWithin({ targetCount, people, loadOf }: SplitInput, least: number, 
   for (let person = 1; person <= people; person++) {
     const reached = new Map<number, number>();
     for (const from of cameFrom[person - 1]!.keys()) {
-      const furthest = longestRun(loadOf, { from, furthest: targetCount, limit });
+      const furthest = longestRun(loadOf, { from, furthest: targetCount, limit, targetCount });
       for (let to = furthest; to > from && loadOf(from, to) >= least; to--) reached.set(to, from);
     }
     cameFrom.push(reached);

@@ -90,7 +90,9 @@ export function weighEvidence({ areaM2, seed, gapField, gapIds, structureField, 
   // Stripes have plateaus of their own; what is left of the layers is what may be zoned.
   if (evened) weighed = weigh(evened.field, gapIds.filter((_, l) => evened.evened[l]));
   const { field, curve, verdict } = weighed;
-  const standingOut = isPlain && field !== null ? groundThatStandsOut(field, streamOf(seed, STAND_OUT_STREAM)) : null;
+  // At the block's edge, where cells are cut, something of the stripes stays and would stand out.
+  const scanned = field && { ...field, layers: field.layers.filter((_, l) => !evened?.evened[l]) };
+  const standingOut = isPlain && scanned ? groundThatStandsOut(scanned, streamOf(seed, STAND_OUT_STREAM)) : null;
   return { verdict, curve, layerCount: gapField?.layers.length ?? 0, standingOut };
 }
 

@@ -93,7 +93,7 @@ export function zoningRoutes(): Router {
     response.json(await viewZoning(accessOf(request), idParam(request, 'zoningId'), null));
   });
   router.post('/zonings/:zoningId/restore', allow('zones.restore', 'propose'), async (request, response) => {
-    response.status(201).json(await restoreAsDraft(accessOf(request), idParam(request, 'zoningId')));
+    response.status(201).json(await restoreAsDraft(accessOf(request), idParam(request, 'zoningId'), await todayOf(accessOf(request), new Date())));
   });
   return router;
 }

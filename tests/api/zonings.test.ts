@@ -521,6 +521,17 @@ describe('publishing', () => {
     expect([anew.zones.length, anew.beginsByHand, anew.takenUpFrom]).toEqual([3, false, null]);
   });
 
+  it('takes zones of an earlier season up in the season that it is', async () => {
+    const now = (await Zoning.query().findById(first).throwIfNotFound()).seasonId;
+    const { estateId } = await Season.query().findById(now).throwIfNotFound();
+    const earlier = await Season.query().insertAndFetch({ estateId, name: 'Long ago', startsOn: '2001-03-01', endsOn: '2002-02-28' });
+    await Zoning.query().findById(first).patch({ seasonId: earlier.id });
+    const { id } = (await manager.post(`${base()}/zonings/${first}/restore`)).body as { id: string };
+    await Zoning.query().findById(first).patch({ seasonId: now });
+    await Season.query().deleteById(earlier.id);
+    expect((await Zoning.query().findById(id).throwIfNotFound()).seasonId).toBe(now);
+  });
+
   it('compares two zonings vine by vine', async () => {
     const one = await draft(2);
     const same = await manager.get(`${base()}/zonings/${one}/compare?with=${first}`);

@@ -12,6 +12,7 @@ import { Zoning } from '../../models/Zoning.ts';
 import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 import { editFromOperation } from './editFromOperation.ts';
+import { seasonOn } from './seasonOn.ts';
 import { drawZones, storeZones } from './storeZones.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -75,19 +76,21 @@ export async function listEdits(access: Access, zoningId: string): Promise<ZoneE
   return rows.map((row) => ({ sequence: row.sequence, operation: (row.operation as StoredEdit).asked, reason: row.reason, undone: row.undone, author: people.find((person) => person.id === row.authorId)?.name ?? null, at: row.at.toISOString() }));
 }
 
-/** Takes a zoning up again as a new draft; the old one stays as it is. */
-export async function restoreAsDraft(access: Access, zoningId: string): Promise<{ id: string }> {
+/** Takes a zoning up again as a new draft of the season that it is; the old one stays as it is. */
+export async function restoreAsDraft(access: Access, zoningId: string, today: string): Promise<{ id: string }> {
   const old = await findZoning(access, zoningId);
   if (old.labels === null || old.baseLabels === null) throw new Unusable('noZones', say('noZonesToTakeUp'));
   const ground = await loadBlockVines(access.estateId, old.blockId);
   requireSameOutline(old, ground);
   const map = await mapOf(old, ground);
   const drawn = await drawZones(old, ground, map);
+  // Zones of an earlier season would be put in force beside those of this one.
+  const season = await seasonOn(access.estateId, today);
   return Zoning.transaction(async (trx) => {
     await Block.query(trx).findOne({ estateId: access.estateId, id: old.blockId }).forUpdate();
     const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId: old.blockId }).max('number as number')) as unknown as { number: number }[];
-    const { blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
-    const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
+    const { blockId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
+    const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId: season.id, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
     const candidates = await ZoningCandidate.query(trx).where({ estateId: access.estateId, zoningId: old.id });
     if (candidates.length > 0) await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
     const known = describingEdits(map);

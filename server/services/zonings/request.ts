@@ -9,10 +9,10 @@ import { loadBlockLayers } from '../../ground/zoneLayers.ts';
 import { enqueueJob } from '../../jobs/queue.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
-import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { readinessOf } from '../layers/view.ts';
 import { say } from '../../sentences/say.ts';
+import { seasonOn } from './seasonOn.ts';
 
 const leastCoverage = 0.6;
 
@@ -32,8 +32,7 @@ export async function requestZoning(access: Access, blockId: string, input: NewZ
   const options = zoningOptions.parse({ ...input, withBlocks, smallestPatchHa: input.smallestPatchHa ?? smallestPatchFor(blocks[0]!.areaM2) });
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
   for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
-  const season = await Season.query().where({ estateId: access.estateId }).where('startsOn', '<=', today).orderBy('startsOn', 'desc').first();
-  if (!season) throw new Unusable('noSeason', say('noSeasonToZone'));
+  const season = await seasonOn(access.estateId, today);
   return Zoning.transaction(async (trx) => {
     const made: (Asked & { blockId: string })[] = [];
     for (const block of blocks) made.push({ blockId: block.id, ...(await insertZoning(trx, access, { block, seasonId: season.id, input, options: { ...options, withBlocks: all.filter((id) => id !== block.id) } })) });

@@ -1,4 +1,3 @@
-import PDFDocument from 'pdfkit';
 import QRCode from 'qrcode';
 import type { DayStop, FieldRound, WalkStop } from '../../shared/contracts/rounds.ts';
 import { restrictionsWithin } from '../../shared/field/entry.ts';
@@ -6,6 +5,7 @@ import { latLonText } from '../../shared/geo/latLonText.ts';
 import { dayBounds } from '../../shared/season/dayBounds.ts';
 import { minutes } from './daySheet.ts';
 import { measureWords } from './measureWords.ts';
+import { Paper } from './paper.ts';
 import { drawSheetStrip } from './sheetStrip.ts';
 import { paperLocale, sheetTexts, type SheetLanguage } from './sheetTexts.ts';
 
@@ -33,18 +33,13 @@ const mostHeadHeight = 44;
 
 /** The walks of a round as PDF: a page run a person, vines in walking order with large boxes, safety card and QR to the round. */
 export async function crewSheet(parts: readonly SheetPart[], options: SheetOptions): Promise<Buffer> {
-  const pdf = new PDFDocument({ size: sizeOf(options), margin: edge, autoFirstPage: false, info: { Title: parts[0] ? `${parts[0].round.blockName} ${parts[0].round.onDate}` : 'Sheet', Creator: 'Patchrow' } });
-  const chunks: Buffer[] = [];
-  pdf.on('data', (chunk: Buffer) => chunks.push(chunk));
-  const ended = new Promise<void>((resolve) => pdf.on('end', resolve));
+  const pdf = new Paper({ face: 'sheet', size: sizeOf(options), margin: edge, autoFirstPage: false, info: { Title: parts[0] ? `${parts[0].round.blockName} ${parts[0].round.onDate}` : 'Sheet', Creator: 'Patchrow' } });
   const code = await QRCode.toBuffer(options.link, { errorCorrectionLevel: 'Q', margin: 4, scale: 6 });
   for (const part of parts) drawPart(pdf, part, { ...options, code });
-  pdf.end();
-  await ended;
-  return Buffer.concat(chunks);
+  return pdf.toBytes();
 }
 
-function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOptions & { code: Buffer }): void {
+function drawPart(pdf: Paper, part: SheetPart, options: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[part.language];
   let page = 1;
   const layout = isWide(part, options) ? 'landscape' : 'portrait';
@@ -54,7 +49,7 @@ function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOption
   drawHead(pdf, part, options);
   const { startPostColour, endPostColour } = part.round;
   const strip = { x: edge, y: pdf.y + 6, width: pdf.page.width - 2 * edge, height: stripHeight };
-  if (isWithoutRows(part.round)) pdf.font('Helvetica').fontSize(10).text(texts.withoutRows, strip.x, strip.y, { width: strip.width });
+  if (isWithoutRows(part.round)) pdf.font('plain').fontSize(10).text(texts.withoutRows, strip.x, strip.y, { width: strip.width });
   else drawSheetStrip(pdf, part.round, strip, { row: texts.row, start: texts.colours[startPostColour], end: texts.colours[endPostColour] });
   const columns = columnsOf(pdf, part);
   let y = drawTableHead(pdf, columns, { texts, y: (isWithoutRows(part.round) ? pdf.y : strip.y + stripHeight) + 8 });
@@ -70,20 +65,20 @@ function drawPart(pdf: PDFKit.PDFDocument, part: SheetPart, options: SheetOption
 }
 
 /** Sheets of several people lie on one pile: each page says whose it is. */
-function drawFoot(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, page: number): void {
-  pdf.font('Helvetica').fontSize(8).text(`${round.blockName}, ${person}. ${sheetTexts[language].page} ${page}`, edge, pdf.page.height - edge - 9, { lineBreak: false });
+function drawFoot(pdf: Paper, { round, person, language }: SheetPart, page: number): void {
+  pdf.font('plain').fontSize(8).text(`${round.blockName}, ${person}. ${sheetTexts[language].page} ${page}`, edge, pdf.page.height - edge - 9, { lineBreak: false });
 }
 
-function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
+function drawHead(pdf: Paper, { round, person, language }: SheetPart, { code, timeZone }: SheetOptions & { code: Buffer }): void {
   const texts = sheetTexts[language];
   const day = new Intl.DateTimeFormat(paperLocale(language), { timeZone: 'UTC', weekday: 'long', day: 'numeric', month: 'long', year: 'numeric' }).format(new Date(`${round.onDate}T12:00:00Z`));
   const side = 92;
   const width = pdf.page.width - 2 * edge - side - 12;
   pdf.image(code, pdf.page.width - edge - side, edge, { width: side });
-  pdf.font('Helvetica').fontSize(8).text(texts.scan, pdf.page.width - edge - side, edge + side, { width: side, align: 'center' });
-  pdf.font('Helvetica-Bold').fontSize(20).text(`${round.blockName}, ${person}`, edge, edge, { width });
+  pdf.font('plain').fontSize(8).text(texts.scan, pdf.page.width - edge - side, edge + side, { width: side, align: 'center' });
+  pdf.font('bold').fontSize(20).text(`${round.blockName}, ${person}`, edge, edge, { width });
   pdf.fontSize(12).text(day, { width });
-  pdf.font('Helvetica').text(`${round.stops.length} ${texts.vines}.${round.gate ? ` ${texts.start}${texts.colon}${round.gate}` : ''}`, { width });
+  pdf.font('plain').text(`${round.stops.length} ${texts.vines}.${round.gate ? ` ${texts.start}${texts.colon}${round.gate}` : ''}`, { width });
   pdf.text(round.zones.filter(({ targets }) => targets > 0).map(({ number, name, targets }) => `${texts.zone} ${number}${name && name !== `Zone ${number}` ? ` (${name})` : ''}${texts.colon}${targets}`).join('   '), { width });
   drawDay(pdf, round, { texts, width });
   if (round.notes) pdf.text(round.notes, { width });
@@ -97,7 +92,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
   );
   const inBag = round.measures.filter(({ measuredIn }) => measuredIn === 'lab').map(({ code, name }) => measureWords[language]?.[code] ?? (name || code));
   if (inBag.length > 0) pdf.text(`${texts.bag}${texts.colon}${inBag.join(', ')}`, { width });
-  if (sided.length > 0) pdf.font('Helvetica-Bold').text(`${texts.side}${texts.colon}${sided.join('; ')}`, { width }).font('Helvetica');
+  if (sided.length > 0) pdf.font('bold').text(`${texts.side}${texts.colon}${sided.join('; ')}`, { width }).font('plain');
   if (handfuls.length > 0) pdf.text(`${texts.ofEach}${texts.colon}${handfuls.join('; ')}`, { width });
   pdf.fontSize(9).text(texts.plan, { width });
   pdf.y = Math.max(pdf.y, edge + side + 14);
@@ -105,7 +100,7 @@ function drawHead(pdf: PDFKit.PDFDocument, { round, person, language }: SheetPar
 }
 
 /** What else the day holds, so that nobody goes home after the first block; in its order where it was sent as one. */
-function drawDay(pdf: PDFKit.PDFDocument, { id, day }: FieldRound, { texts, width }: { texts: Texts; width: number }): void {
+function drawDay(pdf: Paper, { id, day }: FieldRound, { texts, width }: { texts: Texts; width: number }): void {
   if (day.length < 2) return;
   const blockWords = ({ block, vines }: DayStop) => `${block}, ${vines} ${texts.vines}`;
   if (day.every(({ place }) => place === null)) {
@@ -116,12 +111,12 @@ function drawDay(pdf: PDFKit.PDFDocument, { id, day }: FieldRound, { texts, widt
   day.forEach((stop, index) => {
     const way = stop.wayS === null ? '' : ` (${minutes(stop.wayS)})`;
     const isHere = stop.roundId === id;
-    pdf.font(isHere ? 'Helvetica-Bold' : 'Helvetica').text(`${index + 1} ${isHere ? `${stop.block}, ${texts.thisSheet}` : blockWords(stop)}${way}${index < day.length - 1 ? '; ' : ''}`, { width, continued: index < day.length - 1 });
+    pdf.font(isHere ? 'bold' : 'plain').text(`${index + 1} ${isHere ? `${stop.block}, ${texts.thisSheet}` : blockWords(stop)}${way}${index < day.length - 1 ? '; ' : ''}`, { width, continued: index < day.length - 1 });
   });
-  pdf.font('Helvetica');
+  pdf.font('plain');
 }
 
-function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone }: { round: FieldRound; texts: Texts; language: SheetLanguage; timeZone: string }): void {
+function drawSafety(pdf: Paper, { round, texts, language, timeZone }: { round: FieldRound; texts: Texts; language: SheetLanguage; timeZone: string }): void {
   const width = pdf.page.width - 2 * edge;
   const rule = () => pdf.moveTo(edge, pdf.y).lineTo(edge + width, pdf.y).lineWidth(1.5).stroke();
   rule();
@@ -132,7 +127,7 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
   const closed = restrictionsWithin(round.restrictions, { ...dayBounds(timeZone, round.onDate), rowIds: round.stops.map(({ rowId }) => rowId) });
   for (const { startsAt, endsAt, product, labelInterval, setBy } of closed)
     pdf
-      .font('Helvetica-Bold')
+      .font('bold')
       .fontSize(14)
       .text(
         `${texts.restricted} ${told(endsAt)} (${told(startsAt)} – ${told(endsAt)}${texts.colon}${product}, ${setBy}; ${labelInterval})`,
@@ -140,11 +135,11 @@ function drawSafety(pdf: PDFKit.PDFDocument, { round, texts, language, timeZone 
         pdf.y,
         { width },
       );
-  if (closed.length === 0) pdf.font('Helvetica').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
+  if (closed.length === 0) pdf.font('plain').fontSize(9).text(`${texts.noRestriction} (${told(round.checkedAt)})`, edge, pdf.y, { width });
   // A paper does not learn of what is typed later: it says of when it speaks.
-  pdf.font('Helvetica').fontSize(9).text(closed.length === 0 ? texts.law : `${texts.asOf} ${told(round.checkedAt)}. ${texts.law}`, { width });
+  pdf.font('plain').fontSize(9).text(closed.length === 0 ? texts.law : `${texts.asOf} ${told(round.checkedAt)}. ${texts.law}`, { width });
   pdf.text(`${texts.safety} ${texts.meeting}${texts.colon}${round.safety.meetingPoint || '-'}. ${texts.emergency}${texts.colon}${round.safety.emergencyNumber || '-'}.`, { width });
-  pdf.font('Helvetica-Bold').text(texts.notVine, { width });
+  pdf.font('bold').text(texts.notVine, { width });
   pdf.y += 4;
   rule();
 }
@@ -190,7 +185,7 @@ function boxesOf({ round, language }: SheetPart): Box[] {
   return laboratory.length > 0 ? [...read, { shares: 1.6, head: ({ bag }) => bag, box: goesToLab }] : read;
 }
 
-function columnsOf(pdf: PDFKit.PDFDocument, part: SheetPart): Column[] {
+function columnsOf(pdf: Paper, part: SheetPart): Column[] {
   const fixed: Omit<Column, 'x'>[] = isWithoutRows(part.round) ? [
     { width: 26, head: () => '', text: ({ number }) => String(number) },
     { width: 132, head: ({ place }) => place, text: ({ place }) => (place ? latLonText(place) : '-'), bold: true, size: 11 },
@@ -229,8 +224,8 @@ function fromWords({ enterBy, heading, aheadFrom }: WalkStop, round: FieldRound,
   return texts.colours[isStart ? round.startPostColour : round.endPostColour];
 }
 
-function drawTableHead(pdf: PDFKit.PDFDocument, columns: readonly Column[], { texts, y }: { texts: Texts; y: number }): number {
-  pdf.font('Helvetica-Bold').fontSize(9);
+function drawTableHead(pdf: Paper, columns: readonly Column[], { texts, y }: { texts: Texts; y: number }): number {
+  pdf.font('bold').fontSize(9);
   // Longer words than a box is wide take another line, so that no unit is cut off.
   const height = Math.min(mostHeadHeight, Math.max(22, ...columns.map(({ width, head }) => Math.ceil(pdf.heightOfString(head(texts), { width: width - 4 })))));
   for (const { x, width, head } of columns) pdf.text(head(texts), x + 2, y, { width: width - 4, height, ellipsis: true });
@@ -238,13 +233,13 @@ function drawTableHead(pdf: PDFKit.PDFDocument, columns: readonly Column[], { te
   return y + height + 4;
 }
 
-function drawStop(pdf: PDFKit.PDFDocument, columns: readonly Column[], { stop, round, texts, y }: { stop: WalkStop; round: FieldRound; texts: Texts; y: number }): void {
+function drawStop(pdf: Paper, columns: readonly Column[], { stop, round, texts, y }: { stop: WalkStop; round: FieldRound; texts: Texts; y: number }): void {
   for (const { x, width, text, box, bold, size = bold ? 15 : 11 } of columns) {
     if (box) {
       if (box(stop)) pdf.rect(x + 3, y + 2, width - 6, lineHeight - 5).lineWidth(1.2).stroke();
       continue;
     }
-    pdf.font(bold ? 'Helvetica-Bold' : 'Helvetica').fontSize(size).text(text(stop, round, texts), x + 2, y + (size > 11 ? 7 : 9), { width: width - 4, lineBreak: false });
+    pdf.font(bold ? 'bold' : 'plain').fontSize(size).text(text(stop, round, texts), x + 2, y + (size > 11 ? 7 : 9), { width: width - 4, lineBreak: false });
   }
   pdf.moveTo(edge, y + lineHeight - 1).lineTo(pdf.page.width - edge, y + lineHeight - 1).lineWidth(0.5).stroke();
 }

@@ -1,5 +1,5 @@
 import QRCode from 'qrcode';
-import { closePage, innerWidth, margin, openPage, printable } from './report/reportPage.ts';
+import { innerWidth, margin, openPage } from './report/reportPage.ts';
 
 export interface NoticeSheet {
   title: string;
@@ -23,11 +23,11 @@ export async function noticeSheet(sheet: NoticeSheet): Promise<Buffer> {
   const code = await QRCode.toBuffer(sheet.link, { errorCorrectionLevel: 'Q', margin: 4, scale: 6 });
   const right = page.page.width - margin - side;
   page.image(code, right, margin, { width: side });
-  page.fontSize(8).text(printable(sheet.scan), right, margin + side + 2, { width: side, align: 'center' });
-  page.font('bold').fontSize(22).text(printable(sheet.title), margin, margin, { width: innerWidth(page) - side - 16 });
-  page.font('plain').fontSize(12).text(printable(sheet.estateName), { width: innerWidth(page) - side - 16 });
-  if (sheet.voidWords !== null) page.moveDown(0.4).font('bold').fontSize(16).text(printable(sheet.voidWords), { width: innerWidth(page) - side - 16 }).font('plain');
+  page.fontSize(8).text(sheet.scan, right, margin + side + 2, { width: side, align: 'center' });
+  page.font('bold').fontSize(22).text(sheet.title, margin, margin, { width: innerWidth(page) - side - 16 });
+  page.font('plain').fontSize(12).text(sheet.estateName, { width: innerWidth(page) - side - 16 });
+  if (sheet.voidWords !== null) page.moveDown(0.4).font('bold').fontSize(16).text(sheet.voidWords, { width: innerWidth(page) - side - 16 }).font('plain');
   page.y = Math.max(page.y, margin + side + 40);
-  page.fontSize(13).text(printable(sheet.text), margin, page.y, { width: innerWidth(page), lineGap: 4 });
-  return closePage(page);
+  page.fontSize(13).text(sheet.text, margin, page.y, { width: innerWidth(page), lineGap: 4 });
+  return page.toBytes();
 }

@@ -1,4 +1,5 @@
 import type { FieldRound } from '../../shared/contracts/rounds.ts';
+import type { Paper } from './paper.ts';
 
 /** Where the strip stands on the page, in points. */
 export interface StripPlace {
@@ -22,10 +23,10 @@ const widestPitch = 16;
  * The block as its rows side by side, each from its start post at the bottom to its far post: zones in greys, the stops
  * with their numbers. What the crew sees when it looks along the headland.
  */
-export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place: StripPlace, words: StripWords): void {
+export function drawSheetStrip(pdf: Paper, round: FieldRound, place: StripPlace, words: StripWords): void {
   const { rows, stops } = round;
   if (rows.length === 0) return;
-  pdf.font('Helvetica').fontSize(7).fillColor('black');
+  pdf.font('plain').fontSize(7).fillColor('black');
   pdf.text(words.end, place.x, place.y, { lineBreak: false });
   pdf.text(words.start, place.x, place.y + place.height - 8, { lineBreak: false });
   const side = Math.max(pdf.widthOfString(words.start), pdf.widthOfString(words.end)) + 6;
@@ -44,7 +45,7 @@ export function drawSheetStrip(pdf: PDFKit.PDFDocument, round: FieldRound, place
     }
     pdf.moveTo(x, bottom).lineTo(x, bottom - heightOf(row.vineCount)).lineWidth(visited.has(row.id) ? 0.9 : 0.3).strokeColor(visited.has(row.id) ? 'black' : '#888888').stroke();
     if (!visited.has(row.id)) return;
-    const half = pdf.font('Helvetica').fontSize(6.5).widthOfString(row.label) / 2;
+    const half = pdf.font('plain').fontSize(6.5).widthOfString(row.label) / 2;
     // A row whose number would touch the one before it goes without; its marks and the table name it.
     if (x - half < labelledTo + 1.5) return;
     labelledTo = x + half;
@@ -75,8 +76,8 @@ function greyOf(zone: number): string {
   return ['#f2f2f2', '#d9d9d9', '#e6e6e6', '#c9c9c9', '#ededed', '#d0d0d0'][Math.max(0, zone - 1) % 6]!;
 }
 
-function drawStopMark(pdf: PDFKit.PDFDocument, text: string, { x, y }: { x: number; y: number }): void {
+function drawStopMark(pdf: Paper, text: string, { x, y }: { x: number; y: number }): void {
   const radius = text.length > 2 ? 6 : 5;
   pdf.circle(x, y, radius).lineWidth(0.7).fillAndStroke('white', 'black');
-  pdf.font('Helvetica-Bold').fontSize(6.5).fillColor('black').text(text, x - 10, y - 2.4, { width: 20, align: 'center', lineBreak: false });
+  pdf.font('bold').fontSize(6.5).fillColor('black').text(text, x - 10, y - 2.4, { width: 20, align: 'center', lineBreak: false });
 }

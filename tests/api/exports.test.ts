@@ -391,7 +391,7 @@ describe('the printed report', () => {
     expect(text).toContain('How the zones were made');
     expect(text.replace(/\s+/g, ' ')).toMatch(/averaged on cells of \d+\.\d m and smoothed over \d+\.\d m/);
     for (const zone of seen.zones) expect(text).toContain((zone.areaM2 / 10_000).toFixed(2));
-    expect(text).toContain('Ødegård–Sípek');
+    expect(text).toContain('Ødegård–Šípek');
   });
 
   it.skipIf(!hasTool('pdftoppm'))('has the map in the zones’ colours, as different in grey as in colour', async () => {

@@ -15,6 +15,12 @@ describe('bag labels on paper', () => {
     expect(whole!.texts.join(' ')).toMatch(/Toda a zona, .* 118/u);
   });
 
+  it('write names in the letters of their language, and say that a script is missing instead of printing nothing', async () => {
+    const named = { ...facts, block: 'Łąka Ősi Čapek Şirin', zone: '2 Нижня', person: 'Γιώργος 日' };
+    const [page] = readPdf(await labelSheet([{ code: 'ABCDEF', facts: { ...named, date: '2 déc.\u202F2026' } }], { paper: 'a4', language: 'fr', title: 'Labels' }));
+    expect(page!.texts).toEqual(expect.arrayContaining(['Zone 2 Нижня', 'Łąka Ősi Čapek Şirin, 2 déc.\u00A02026', 'Arrêt 118, Γιώργος ?']));
+  });
+
   it('are as many a page as the sheet has, one a page for a label printer', async () => {
     const labels = Array.from({ length: 15 }, () => ({ code: 'ABCDEF', facts: null }));
     const pagesOf = async (paper: 'single' | 'a4' | 'letter') => readPdf(await labelSheet(labels, { paper, language: 'en', title: 'Labels' }));

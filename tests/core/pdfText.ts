@@ -7,7 +7,7 @@ interface Box {
   readonly height: number;
 }
 
-/** What is written and drawn on each page of a PDF made by pdfkit with its built-in fonts: texts in order, boxes in points, filled squares in the units they were drawn in. */
+/** What is written and drawn on each page of a PDF made by pdfkit: texts in order, boxes in points, filled squares in the units they were drawn in. */
 export interface PdfPage {
   readonly width: number;
   readonly height: number;
@@ -22,8 +22,20 @@ export function readPdf(bytes: Buffer): PdfPage[] {
   return [...objects.values()].filter((body) => /\/Type \/Page\b/u.test(body)).map((page) => {
     const [, width, height] = /\/MediaBox \[0 0 ([\d.]+) ([\d.]+)\]/u.exec(page)!;
     const content = contentOf(objects.get(/\/Contents (\d+) 0 R/u.exec(page)![1]!)!);
-    return { width: Number(width), height: Number(height), texts: textsOf(content), boxes: boxesOf(content), fills: fillsOf(content) };
+    return { width: Number(width), height: Number(height), texts: textsOf(content, lettersOfFonts(page, objects)), boxes: boxesOf(content), fills: fillsOf(content) };
   });
+}
+
+/** Of each font of a page the letters of its codes, from its table for copying text (ToUnicode; ISO 32000-1, 9.10.3). */
+function lettersOfFonts(page: string, objects: ReadonlyMap<string, string>): Map<string, Map<number, string>> {
+  const resources = objects.get(/\/Resources (\d+) 0 R/u.exec(page)![1]!)!;
+  const listed = /\/Font <<([\s\S]*?)>>/u.exec(resources)?.[1] ?? '';
+  return new Map([...listed.matchAll(/\/(F\d+) (\d+) 0 R/gu)].map(([, name, id]) => [name!, lettersOf(contentOf(objects.get(/\/ToUnicode (\d+) 0 R/u.exec(objects.get(id!)!)![1]!)!))]));
+}
+
+function lettersOf(table: string): Map<number, string> {
+  const ranges = [...table.matchAll(/<([0-9a-f]+)> <[0-9a-f]+> \[([^\]]*)\]/gu)];
+  return new Map(ranges.flatMap(([, from, listed]) => [...listed!.matchAll(/<([0-9a-f ]*)>/gu)].map(([, hex], i): [number, string] => [parseInt(from!, 16) + i, Buffer.from(hex!.replaceAll(' ', ''), 'hex').swap16().toString('utf16le')])));
 }
 
 function contentOf(body: string): string {
@@ -32,9 +44,17 @@ function contentOf(body: string): string {
   return inflateSync(stream).toString('latin1');
 }
 
-/** Hexadecimal pieces of one TJ are one text; between them stands kerning. */
-function textsOf(content: string): string[] {
-  return [...content.matchAll(/\[((?:<[0-9a-f]*> ?-?[\d.]* ?)+)\] TJ/gu)].map(([, pieces]) => [...pieces!.matchAll(/<([0-9a-f]*)>/gu)].map(([, hex]) => Buffer.from(hex!, 'hex').toString('latin1')).join(''));
+/** Hexadecimal pieces of one TJ are one text in the font set before; between them stands kerning. */
+function textsOf(content: string, fonts: ReadonlyMap<string, ReadonlyMap<number, string>>): string[] {
+  let letters: ReadonlyMap<number, string> | undefined;
+  return [...content.matchAll(/\/(F\d+) [\d.]+ Tf|\[((?:<[0-9a-f]*> ?-?[\d.]* ?)+)\] TJ/gu)].flatMap(([, font, pieces]) => {
+    if (font !== undefined) {
+      letters = fonts.get(font);
+      return [];
+    }
+    const codes = [...pieces!.matchAll(/<([0-9a-f]*)>/gu)].map(([, hex]) => hex!).join('').match(/.{4}/gu) ?? [];
+    return [codes.map((code) => letters!.get(parseInt(code, 16)) ?? '\uFFFD').join('')];
+  });
 }
 
 function boxesOf(content: string): PdfPage['boxes'] {

@@ -3,7 +3,8 @@ import type { MultiPolygonXY, RingXY, XY } from '../../../shared/geo/coordinates
 import { polygonsCentroid, polygonsArea } from '../../../shared/geo/rings.ts';
 import { convergenceDeg, fromUtm, polygonsToUtm } from '../../../shared/geo/utm.ts';
 import { zoneSpan, zoneStyle } from '../../../shared/catalog/zoneStyles.ts';
-import { ink, type Page } from './reportPage.ts';
+import type { Paper } from '../paper.ts';
+import { ink } from './reportPage.ts';
 import type { ReportZone, ZoneReport } from './zoneReport.ts';
 
 interface Box {
@@ -16,7 +17,7 @@ interface Box {
 type ToPaper = (point: XY) => [number, number];
 
 /** Marks of the zones on paper, in the order of the screen's patterns, so that grey print tells them apart; past six they repeat and the number decides. */
-const patterns: ((page: Page, box: Box) => void)[] = [
+const patterns: ((page: Paper, box: Box) => void)[] = [
   () => undefined,
   (page, box) => hatch(page, box, 1),
   dots,
@@ -31,7 +32,7 @@ const gap = 6;
 const patternOpacity = 0.65;
 
 /** The zones as vectors with their marks and numbers, the outline, a scale bar and an arrow to true north. */
-export function drawMap(page: Page, report: ZoneReport, box: Box): void {
+export function drawMap(page: Paper, report: ZoneReport, box: Box): void {
   const outline = polygonsToUtm(report.boundary, report.epsg);
   const zones = report.zones.map((zone) => ({ zone, number: zone.number, shape: polygonsToUtm(zone.polygonsLonLat, report.epsg) }));
   const { toPaper, metresPerPoint } = frame(outline, { ...box, width: box.width - 60 });
@@ -69,7 +70,7 @@ export interface PaintedZone {
 }
 
 /** Colour and mark of a zone over a box, as on the screen; whoever calls has clipped the page to the zone's shape. */
-function fillZone(page: Page, { zone: { number, colour }, count }: PaintedZone, box: Box): void {
+function fillZone(page: Paper, { zone: { number, colour }, count }: PaintedZone, box: Box): void {
   const { fill, mark } = zoneStyle(number, { count, own: colour === null ? {} : { [number]: colour } });
   page.rect(box.x, box.y, box.width, box.height).fill(fill);
   page.opacity(patternOpacity).lineWidth(0.6).strokeColor(mark).fillColor(mark);
@@ -78,7 +79,7 @@ function fillZone(page: Page, { zone: { number, colour }, count }: PaintedZone, 
 }
 
 /** The patch of a zone in the legend. */
-export function drawSwatch(page: Page, painted: PaintedZone, box: Box): void {
+export function drawSwatch(page: Paper, painted: PaintedZone, box: Box): void {
   page.save();
   page.rect(box.x, box.y, box.width, box.height).clip();
   fillZone(page, painted, box);
@@ -94,7 +95,7 @@ function frame(outline: MultiPolygonXY, box: Box): { toPaper: ToPaper; metresPer
   return { metresPerPoint, toPaper: ([x, y]) => [left + (x - west) / metresPerPoint, top + (north - y) / metresPerPoint] };
 }
 
-function trace(page: Page, shape: MultiPolygonXY, toPaper: ToPaper): void {
+function trace(page: Paper, shape: MultiPolygonXY, toPaper: ToPaper): void {
   for (const ring of shape.flat()) {
     ring.forEach((point, index) => {
       const [x, y] = toPaper(point);
@@ -105,7 +106,7 @@ function trace(page: Page, shape: MultiPolygonXY, toPaper: ToPaper): void {
   }
 }
 
-function hatch(page: Page, { x, y, width, height }: Box, direction: 1 | -1): void {
+function hatch(page: Paper, { x, y, width, height }: Box, direction: 1 | -1): void {
   for (let shift = -height; shift < width + height; shift += gap * Math.SQRT2) {
     if (direction === 1) page.moveTo(x + shift, y + height).lineTo(x + shift + height, y);
     else page.moveTo(x + shift, y).lineTo(x + shift + height, y + height);
@@ -113,17 +114,17 @@ function hatch(page: Page, { x, y, width, height }: Box, direction: 1 | -1): voi
   page.stroke();
 }
 
-function level(page: Page, { x, y, width, height }: Box): void {
+function level(page: Paper, { x, y, width, height }: Box): void {
   for (let shift = gap / 2; shift < height; shift += gap) page.moveTo(x, y + shift).lineTo(x + width, y + shift);
   page.stroke();
 }
 
-function upright(page: Page, { x, y, width, height }: Box): void {
+function upright(page: Paper, { x, y, width, height }: Box): void {
   for (let shift = gap / 2; shift < width; shift += gap) page.moveTo(x + shift, y).lineTo(x + shift, y + height);
   page.stroke();
 }
 
-function dots(page: Page, { x, y, width, height }: Box): void {
+function dots(page: Paper, { x, y, width, height }: Box): void {
   for (let down = gap / 2, line = 0; down < height; down += gap, line++) {
     for (let across = line % 2 === 0 ? gap / 4 : (3 * gap) / 4; across < width; across += gap) page.circle(x + across, y + down, 0.8);
   }
@@ -180,12 +181,12 @@ function crossingsAt(ring: RingXY, y: number): number[] {
   });
 }
 
-function drawNumber(page: Page, number: number, [x, y]: [number, number]): void {
+function drawNumber(page: Paper, number: number, [x, y]: [number, number]): void {
   page.circle(x, y, 9).fillAndStroke('white', ink);
   page.font('bold').fontSize(10).fillColor(ink).text(String(number), x - 9, y - 7, { width: 18, align: 'center', lineBreak: false });
 }
 
-function drawNorth(page: Page, { x, y, turnDeg, letter }: { x: number; y: number; turnDeg: number; letter: string }): void {
+function drawNorth(page: Paper, { x, y, turnDeg, letter }: { x: number; y: number; turnDeg: number; letter: string }): void {
   page.save().rotate(turnDeg, { origin: [x, y] });
   page.moveTo(x, y - 18).lineTo(x + 6, y + 12).lineTo(x, y + 7).lineTo(x - 6, y + 12).closePath().fill(ink);
   page.restore();
@@ -195,7 +196,7 @@ function drawNorth(page: Page, { x, y, turnDeg, letter }: { x: number; y: number
 const metresPerFoot = 0.3048;
 
 /** A bar of a round length, at most about 90 points long. */
-function drawScale(page: Page, { right, bottom, metresPerPoint, units }: { right: number; bottom: number; metresPerPoint: number; units: 'metric' | 'us' }): void {
+function drawScale(page: Paper, { right, bottom, metresPerPoint, units }: { right: number; bottom: number; metresPerPoint: number; units: 'metric' | 'us' }): void {
   const unitM = units === 'us' ? metresPerFoot : 1;
   const most = (90 * metresPerPoint) / unitM;
   const power = 10 ** Math.floor(Math.log10(most));

@@ -1,6 +1,6 @@
 import { sumFigures } from '../../../shared/cellar/dependent.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
-import { closePage, innerWidth, margin, openPage, paragraph, printable, faint } from './reportPage.ts';
+import { innerWidth, margin, openPage, paragraph, faint } from './reportPage.ts';
 import { seasonLetterTexts, type LetterLanguage } from './seasonLetterTexts.ts';
 
 export interface SeasonLetter {
@@ -26,15 +26,15 @@ export async function seasonLetter(letter: SeasonLetter): Promise<Buffer> {
   const texts = seasonLetterTexts[letter.language];
   const title = filled(texts.title, { block: letter.block.blockName });
   const page = openPage({ size: letter.size, title, at: letter.now });
-  page.font('bold').fontSize(18).text(printable(title), margin, margin).font('plain');
-  page.fontSize(9).fillColor(faint).text(printable(filled(texts.line, { estate: letter.estateName, season: letter.seasonName, day: dayText(letter, letter.now) })), { width: innerWidth(page) });
+  page.font('bold').fontSize(18).text(title, margin, margin).font('plain');
+  page.fontSize(9).fillColor(faint).text(filled(texts.line, { estate: letter.estateName, season: letter.seasonName, day: dayText(letter, letter.now) }), { width: innerWidth(page) });
   page.moveDown(0.6);
   for (const part of letterParts(letter)) {
     paragraph(page, part.join(' '));
     page.moveDown(0.6);
   }
-  page.moveDown(0.8).fontSize(8).fillColor(faint).text(printable(texts.caution), margin, page.y, { width: innerWidth(page) });
-  return closePage(page);
+  page.moveDown(0.8).fontSize(8).fillColor(faint).text(texts.caution, margin, page.y, { width: innerWidth(page) });
+  return page.toBytes();
 }
 
 /** The letter's sentences, paragraph by paragraph: what came, whether the zones told it apart, what it cost to know. */

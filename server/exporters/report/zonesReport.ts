@@ -1,5 +1,6 @@
 import { drawMap, drawSwatch } from './reportMap.ts';
-import { closePage, faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, printable, table, type Column, type Page } from './reportPage.ts';
+import type { Paper } from '../paper.ts';
+import { faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, table, type Column } from './reportPage.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
@@ -16,11 +17,11 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   const words = wordsOf(report);
   const title = filled(words.texts.title as string, { block: report.blockName });
   const page = openPage({ size: report.size, title, at: report.today });
-  page.font('bold').fontSize(20).text(printable(title), margin, margin);
-  page.font('plain').fontSize(9).fillColor(faint).text(printable(filled(words.texts.line as string, { estate: report.estateName, number: report.number, name: report.name ? ` “${report.name}”` : '', state: stateOf(report, words).toLowerCase(), day: words.day(report.madeAt) })));
+  page.font('bold').fontSize(20).text(title, margin, margin);
+  page.font('plain').fontSize(9).fillColor(faint).text(filled(words.texts.line as string, { estate: report.estateName, number: report.number, name: report.name ? ` “${report.name}”` : '', state: stateOf(report, words).toLowerCase(), day: words.day(report.madeAt) }));
   page.moveDown(0.8);
   const verdict = verdictOf(report, words.texts);
-  if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(printable(verdict));
+  if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(verdict);
   page.moveDown(0.4);
   const mapTop = page.y;
   const lines = Math.max(0, report.zones.length - 2) + Math.max(0, report.layers.length - 2);
@@ -37,7 +38,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   method(page, report, words);
   limits(page, report, words);
   footers(page, report, words);
-  return closePage(page);
+  return page.toBytes();
 }
 
 interface Words {
@@ -110,7 +111,7 @@ function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figu
 /** Layers that the table of zones has room for. */
 const shownLayers = 2;
 
-function zoneTable(page: Page, report: ZoneReport, { texts, figure }: Words): void {
+function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): void {
   const { unit, each } = squareMetres[report.units];
   const total = report.zones.reduce((sum, zone) => sum + zone.areaM2, 0);
   const layers = report.layers.filter((layer) => layer.weight > 0).slice(0, shownLayers);
@@ -139,7 +140,7 @@ function meanOf(stats: { mean: number | null; sd: number | null } | undefined, l
   return stats.sd === null ? figure(stats.mean, layer.decimals) : `${figure(stats.mean, layer.decimals)} ± ${figure(stats.sd, layer.decimals)}`;
 }
 
-function layerTable(page: Page, report: ZoneReport, { texts, figure, day }: Words): void {
+function layerTable(page: Paper, report: ZoneReport, { texts, figure, day }: Words): void {
   if (report.layers.length === 0) return;
   heading(page, texts.layers as string);
   const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }];
@@ -153,7 +154,7 @@ function layerTable(page: Page, report: ZoneReport, { texts, figure, day }: Word
   for (const layer of report.layers) if (layer.override) paragraph(page, filled(texts.override as string, { layer: layer.name, ...layer.override }));
 }
 
-function method(page: Page, report: ZoneReport, { texts, length, patch }: Words): void {
+function method(page: Paper, report: ZoneReport, { texts, length, patch }: Words): void {
   keepRoom(page, 70);
   heading(page, texts.how as string);
   const made = filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch });
@@ -166,7 +167,7 @@ function method(page: Page, report: ZoneReport, { texts, length, patch }: Words)
   ].join(' '));
 }
 
-function limits(page: Page, report: ZoneReport, { texts, length }: Words): void {
+function limits(page: Paper, report: ZoneReport, { texts, length }: Words): void {
   keepRoom(page, 70);
   heading(page, texts.limits as string);
   const tested = report.reasons.some(({ code }) => code.startsWith('fruit-'));
@@ -174,13 +175,13 @@ function limits(page: Page, report: ZoneReport, { texts, length }: Words): void 
 }
 
 /** The same foot on every page, written when the number of pages is known. */
-function footers(page: Page, report: ZoneReport, { texts, day, length, patch }: Words): void {
+function footers(page: Paper, report: ZoneReport, { texts, day, length, patch }: Words): void {
   const text = filled(texts.footer as string, { today: day(report.today), engine: report.engineVersion, seed: report.seed, smoothing: length(report.smoothingM, 1), patch });
   const { start, count } = page.bufferedPageRange();
   for (let at = start; at < start + count; at++) {
     page.switchToPage(at);
     // The foot lies in the margin, where text would begin a new page.
     page.page.margins.bottom = 0;
-    page.font('plain').fontSize(7.5).fillColor(faint).text(printable(`${text}  ${at + 1}/${count}`), margin, page.page.height - 36, { width: innerWidth(page), lineBreak: false });
+    page.font('plain').fontSize(7.5).fillColor(faint).text(`${text}  ${at + 1}/${count}`, margin, page.page.height - 36, { width: innerWidth(page), lineBreak: false });
   }
 }

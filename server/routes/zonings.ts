@@ -76,7 +76,8 @@ export function zoningRoutes(): Router {
     response.json(await publishEffects(accessOf(request), idParam(request, 'zoningId')));
   });
   router.get('/zonings/:zoningId/compare', allow('estate.see', 'read'), async (request, response) => {
-    response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), comparedWith.parse(request.query).with));
+    const { with: otherId, zones = null } = comparedWith.parse(request.query);
+    response.json(await compareZonings(accessOf(request), idParam(request, 'zoningId'), { otherId, zones }));
   });
   router.get('/zonings/:zoningId/export', allow('exports.make'), async (request, response) => {
     const { format, zones = null } = zonesExport.parse(request.query);

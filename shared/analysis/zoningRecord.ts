@@ -10,7 +10,7 @@ import type { ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes
 export function candidateOf(k: number, input: ZoneStatsInput): ZoningCandidate {
   // Of several blocks zoned together one may lack a zone that the others have.
   const zones = describeZones(input).filter(({ areaM2 }) => areaM2 > 0);
-  return { k, labels: input.zones.labels, doubt: input.zones.doubt, zones, differences: zoneDifferences(zones, input.layers) };
+  return { k, labels: input.zones.labels, doubt: input.zones.doubt, zones, differences: zoneDifferences(zones, input.layers.flatMap(({ id, kind }) => (kind === 'number' ? [id] : []))) };
 }
 
 /** One row for each k = 1…6: the figures of the fit, of the comparison with no structure, and of the cleaned zones. */

@@ -45,18 +45,16 @@ export function zoneCountOf(labels: Labels): number {
   return highest;
 }
 
-/** Lowest and highest zone mean of each numeric layer, with the spread left within zones. */
-export function zoneDifferences(zones: readonly Zone[], layers: readonly ZoningLayer[]): ZoneDifference[] {
-  return layers
-    .filter(({ kind }) => kind === 'number')
-    .flatMap((layer) => {
-      const stats = zones.flatMap((zone) => zone.layers.filter(({ layerId, mean }) => layerId === layer.id && mean !== null));
-      if (stats.length === 0) return [];
-      const means = stats.map(({ mean }) => mean!);
-      const count = stats.reduce((sum, { n }) => sum + n, 0);
-      const within = stats.reduce((sum, { n, sd }) => sum + n * sd! * sd!, 0);
-      return [{ layerId: layer.id, lowest: Math.min(...means), highest: Math.max(...means), withinSd: Math.sqrt(within / count) }];
-    });
+/** Lowest and highest zone mean of each of these layers of numbers, with the spread left within zones. */
+export function zoneDifferences(zones: readonly { readonly layers: readonly ZoneLayerStats[] }[], layerIds: readonly string[]): ZoneDifference[] {
+  return layerIds.flatMap((id) => {
+    const stats = zones.flatMap((zone) => zone.layers.filter(({ layerId, mean }) => layerId === id && mean !== null));
+    if (stats.length === 0) return [];
+    const means = stats.map(({ mean }) => mean!);
+    const count = stats.reduce((sum, { n }) => sum + n, 0);
+    const within = stats.reduce((sum, { n, sd }) => sum + n * sd! * sd!, 0);
+    return [{ layerId: id, lowest: Math.min(...means), highest: Math.max(...means), withinSd: Math.sqrt(within / count) }];
+  });
 }
 
 function cellAreas({ share, cellSizeM }: Grid, labels: Labels, count: number): Float64Array {

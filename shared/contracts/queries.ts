@@ -18,7 +18,7 @@ export const shownZones = z.object({ zones: z.coerce.number().int().min(1).max(6
 export const zonesExport = shownZones.extend({ format: z.string() });
 export const letterPaper = z.object({ size: z.enum(['A4', 'Letter']).default('A4') });
 export const zonesReport = shownZones.extend(letterPaper.shape);
-export const comparedWith = z.object({ with: id });
+export const comparedWith = shownZones.extend({ with: id });
 
 /** Somebody else's walk, for typing their sheet. */
 export const whoseWalk = z.object({ person: id.optional() });

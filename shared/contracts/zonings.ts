@@ -30,6 +30,8 @@ export const zoningLine = z.object({
   number: z.number().int(),
   name: z.string(),
   state: z.enum(zoningStates),
+  /** It failed because somebody stopped it. */
+  isStopped: z.boolean(),
   verdict: z.enum(['one', 'test', 'several']).nullable(),
   advisedZones: z.number().int().nullable(),
   chosenZones: z.number().int().nullable(),
@@ -98,10 +100,13 @@ export const zoningView = z.object({
   standsOut: multiPolygonGeometry.nullable(),
   alsoOffer: z.array(z.number().int()),
   evidence: z.array(evidenceRow),
+  /** Of the zones that `zones` shows: lowest and highest mean of each layer of numbers, and the spread left inside. */
   differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),
   warnings: z.array(reason),
   /** The zones tested on readings of fruit: analysis of variance by zone and a shuffle within rows. */
   fruit: z.array(z.object({ measure: z.string(), on: z.array(z.string()), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),
+  /** Number of zones that was tested on fruit; null before there is an outcome. */
+  fruitZones: z.number().int().nullable(),
   /** The zones that its edits begin with were changed by hand in the version it was taken up from. */
   beginsByHand: z.boolean(),
   /** The number of the version that its edits begin with; null where they begin with zones as computed. */

@@ -22,7 +22,7 @@ export const useZoningsStore = defineStore('zonings', () => {
   const effects = (estateId: string, zoningId: string) => http.get<PublishEffects>(`${base(estateId)}/zonings/${zoningId}/effects`);
   const publish = (estateId: string, zoningId: string, made: { reason: string; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/publish`, made);
   const restore = (estateId: string, zoningId: string) => http.post<{ id: string }>(`${base(estateId)}/zonings/${zoningId}/restore`);
-  const compare = (estateId: string, zoningId: string, other: string) => http.get<ZoningComparison>(`${base(estateId)}/zonings/${zoningId}/compare`, { query: { with: other } });
+  const compare = (estateId: string, zoningId: string, { other, zones = null }: { other: string; zones?: number | null }) => http.get<ZoningComparison>(`${base(estateId)}/zonings/${zoningId}/compare`, { query: { with: other, zones } });
   const name = (estateId: string, zoningId: string, called: string) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { name: called });
   const doubt = (estateId: string, zoningId: string, zones: number | null = null) => http.get<ZoningDoubt>(`${base(estateId)}/zonings/${zoningId}/doubt`, { query: { zones } });
   const seasons = (estateId: string, zoningId: string) => http.get<ZoningSeasons>(`${base(estateId)}/zonings/${zoningId}/seasons`);

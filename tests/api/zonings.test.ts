@@ -1,9 +1,10 @@
 import { readFileSync, readdirSync, readlinkSync } from 'node:fs';
 import { randomUUID } from 'node:crypto';
+import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
 import { smallestPatchFor } from '../../shared/analysis/smallestPatch.ts';
-import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
+import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningLine, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Job } from '../../server/models/Job.ts';
@@ -234,6 +235,25 @@ describe('a zoning that does not come to its end', () => {
     expect((await manager.patch(`${base()}/zonings/${zoningId}`, { chosenZones: 2 })).status).toBe(409);
   });
 
+  it('says that it was stopped, and not that it could not be computed', async () => {
+    const { zoningId, jobId } = await ask();
+    await agronomist.delete(`${base()}/jobs/${jobId}`);
+    const done = await zoned();
+    const { items } = (await manager.get(`${base()}/zonings?block=${plot.blockId}`)).body as { items: ZoningLine[] };
+    expect([zoningId, done].map((id) => items.find((line) => line.id === id)!.isStopped)).toEqual([true, false]);
+    expect(await view(zoningId)).toMatchObject({ state: 'failed', isStopped: true, problem: null });
+  });
+
+  it('has words for every stage that it tells of', async () => {
+    const { jobId } = await ask();
+    const job = await Job.query().patchAndFetchById(jobId, { state: 'running' });
+    const stages = new Set<string>();
+    await zoningJob.work({ job, report: (stage) => Promise.resolve(void stages.add(stage)) });
+    const words = JSON.parse(readFileSync(join(import.meta.dirname, '../../src/locales/en/zones.json'), 'utf8')) as { stage: Record<string, string> };
+    expect(stages.size).toBeGreaterThan(5);
+    expect([...stages].filter((stage) => !(stage.replace(/[ -]/g, '_') in words.stage))).toEqual([]);
+  });
+
   it('leaves no proposal when it is called off while it is computed', async () => {
     const { zoningId, jobId } = await ask();
     const job = await Job.query().patchAndFetchById(jobId, { state: 'running' });
@@ -264,7 +284,7 @@ describe('a zoning that does not come to its end', () => {
       await runner.stop();
       await BlockLayer.query().findById(here.id).patch({ cells: here.cells });
     }
-    expect((await view(zoningId)).problem).toMatch(/cells cannot be read.*Import the layer again/);
+    expect(await view(zoningId)).toMatchObject({ isStopped: false, problem: expect.stringMatching(/cells cannot be read.*Import the layer again/) });
     await expectNothing(zoningId);
   });
 
@@ -317,6 +337,19 @@ describe('a draft', () => {
     expect((await step('redo')).status).toBe(409);
     const { items } = (await manager.get(`${base()}/zonings/${zoningId}/edits`)).body as { items: { sequence: number; author: string; undone: boolean }[] };
     expect(items.map(({ sequence, author, undone }) => [sequence, author, undone])).toEqual([[1, managerName, false], [2, managerName, false]]);
+  });
+
+  it('tells the difference between its zones as they stand, also after a hand has changed them', async () => {
+    const zoningId = await draft(4);
+    const told = ({ zones, differences }: ZoningView) => {
+      const means = zones.map(({ layers }) => layers[0]!.mean!);
+      expect(differences).toMatchObject([{ lowest: Math.min(...means), highest: Math.max(...means) }]);
+      return differences[0]!;
+    };
+    const computed = told(await view(zoningId));
+    const joined = told(await edit(zoningId, { kind: 'merge', zones: [1], into: 2 }));
+    expect(joined.lowest).toBeGreaterThan(computed.lowest);
+    expect(joined.withinSd).toBeGreaterThan(computed.withinSd);
   });
 
   it('goes on from where it was undone to: what was taken back is let go', async () => {
@@ -542,6 +575,22 @@ describe('publishing', () => {
     const swapped = (await manager.get(`${base()}/zonings/${one}/compare?with=${first}`)).body as { vines: number; vinesMoved: number; adjustedRand: number; pairs: object[] };
     expect(swapped).toMatchObject({ vinesMoved: swapped.vines, vinesApart: 0, adjustedRand: 1 });
     expect(swapped.pairs).toHaveLength(2);
+  });
+
+  it('compares a run with the number of zones that its page shows: the one fixed for it, or another that is looked at', async () => {
+    const [fixed, other] = [await zoned({ zones: 4 }), await draft(2)];
+    // Two are advised, and of four clean-up leaves three.
+    const vinesOf = async (path: string) => {
+      const { pairs } = (await manager.get(`${base()}/zonings/${fixed}/${path}`)).body as { pairs: { from: number; vines: number }[] };
+      return [...new Set(pairs.map(({ from }) => from))].map((zone) => [zone, pairs.filter(({ from }) => from === zone).reduce((sum, { vines }) => sum + vines, 0)]);
+    };
+    const shown = async (zones?: number) => (await view(fixed, zones)).zones.map(({ number, vines }) => [number, vines]);
+    expect(await shown()).toHaveLength(3);
+    expect(await vinesOf(`compare?with=${other}`)).toEqual(await shown());
+    expect(await vinesOf(`compare?with=${other}&zones=2`)).toEqual(await shown(2));
+    const doubt = (await manager.get(`${base()}/zonings/${fixed}/doubt`)).body as ZoningDoubt;
+    expect(doubt).toEqual((await manager.get(`${base()}/zonings/${fixed}/doubt?zones=4`)).body);
+    expect((await manager.get(`${base()}/zonings/${fixed}/labels`)).body).toEqual(await labelsOf(fixed, 4));
   });
 
   it('moves no vine by publishing zones that only got other numbers', async () => {

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { ZoningView } from '../../shared/contracts/zonings.ts';
-import { adviceWords, numberWords, warningWords } from '../../src/components/zones/zoningWords.ts';
-import type { Format } from '../../src/lib/format.ts';
+import { adviceWords, numberWords, verdictWords, warningWords } from '../../src/components/zones/zoningWords.ts';
+import { createFormat, type Format } from '../../src/lib/format.ts';
 
 /** Names of sentences with what is put into them, so that a wording may change. */
 const t = (key: string, named: Record<string, unknown> = {}) => (key === 'zones.count' ? `${String(named.n)} zones` : `${key.replace('zones.number.', '')}(${Object.values(named).join(', ')})`);
@@ -26,6 +26,40 @@ describe('what is said of other numbers of zones', () => {
   it('says nothing of runs of before or of one zone', () => {
     expect(words(3, [], [row(2, 8, null), row(3, 9.1, null)])).toBe('');
     expect(words(1, [2], [row(1, 0, null), row(2, 8, 0.9)])).toBe('');
+  });
+});
+
+describe('how far the zones are apart', () => {
+  const metric = createFormat({ language: 'en', units: 'metric' });
+  const sentence = (key: string, named: Record<string, unknown> = {}) => `${key}(${JSON.stringify(named)})`;
+  const layers = [{ layerId: 'map', name: 'Map', type: 'soilClass', unit: '', weight: 1 }, { layerId: 'dem', name: 'Height', type: 'elevation', unit: 'm', weight: 0 }, { layerId: 'ec', name: 'Soil', type: 'conductivity', unit: 'mS/m', weight: 1 }];
+  const zone = (...means: number[]) => ({ layers: means.map((mean, at) => ({ layerId: layers[at]!.layerId, n: 100, mean, sd: 2 })) });
+  const said = (zones: object[], over: object = {}) => verdictWords({ layers, zones, isJudged: true, verdict: 'several', advisedZones: 2, reasons: [], ...over } as unknown as ZoningView, { t: sentence, format: metric });
+
+  it('is told of the zones that stand on the screen, in a layer that voted', () => {
+    const named = { layer: 'Soil', lowest: '20.0', highest: '31.0', unit: ' mS/m', within: '2.0' };
+    expect(said([zone(1, 80, 20), zone(3, 90, 31)]).below).toContain(sentence('zones.difference', named));
+    expect(said([zone(1, 80, 20), zone(2, 85, 26), zone(3, 90, 44)]).below).toContain(sentence('zones.difference', { ...named, highest: '44.0' }));
+    expect(said([zone(1, 80, 20)]).below).not.toContain('zones.difference');
+  });
+
+  it('names the ground that stands out in the reader’s own unit', () => {
+    const reasons = [{ code: 'stands-out', about: null, figures: { hectares: 0.2 } }];
+    const acres = createFormat({ language: 'en', units: 'us' });
+    expect(said([], { reasons }).rest).toContain(`"ground":"${metric.withUnit('area', 0.2, 2)}"`);
+    expect(verdictWords({ layers, zones: [], isJudged: true, verdict: 'several', advisedZones: 2, reasons } as unknown as ZoningView, { t: sentence, format: acres }).rest).toContain(`"ground":"${acres.withUnit('area', 0.2, 2)}"`);
+    expect(acres.withUnit('area', 0.2, 2)).not.toBe(metric.withUnit('area', 0.2, 2));
+  });
+});
+
+describe('what fruit says', () => {
+  const metric = createFormat({ language: 'en', units: 'metric' });
+  const said = (over: object) => verdictWords({ layers: [], zones: [], isJudged: true, advisedZones: 1, verdict: 'one', reasons: [{ code: 'no-structure', about: null, figures: {} }, { code: 'fruit-agrees', about: 'brix', figures: {} }], ...over } as unknown as ZoningView, { t: (key: string, named: Record<string, unknown> = {}) => `${key}(${String(named.n ?? named.zones ?? '')})`, format: metric }).rest;
+
+  it('is not taken for a word on the verdict where other zones than the advised ones were tested', () => {
+    expect(said({ fruitZones: 2 })).toBe('zones.reason.no-structure() zones.tried.fruit-agrees(zones.count(2))');
+    expect(said({ fruitZones: 2, advisedZones: 2 })).toContain('zones.reason.fruit-agrees()');
+    expect(said({ fruitZones: null })).toContain('zones.reason.fruit-agrees()');
   });
 });
 

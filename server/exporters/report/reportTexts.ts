@@ -17,6 +17,8 @@ export interface ReportTexts {
   readonly number: Readonly<Record<NumberNote['code'], string>>;
   readonly stateOf: Readonly<Record<string, string>>;
   readonly reason: Readonly<Record<string, string>>;
+  /** What fruit says of another number of zones than the advised one, by code. */
+  readonly tried: Readonly<Record<string, string>>;
 }
 export type ReportLanguage = keyof typeof reportTexts;
 

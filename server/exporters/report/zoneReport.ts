@@ -19,6 +19,8 @@ export interface ZoneReport {
   isJudged: boolean;
   advisedZones: number | null;
   reasons: readonly { code: string; about: string | null }[];
+  /** Number of zones that was tested on fruit. */
+  fruitZones: number | null;
   /** What is said of the number of zones beside others. */
   numbers: readonly NumberNote[];
   layers: readonly ReportLayer[];
@@ -51,6 +53,8 @@ export interface ReportLayer {
   decimals: number;
   measuredOn: string | null;
   isContext: boolean;
+  /** Codes of classes have no mean. */
+  isClass: boolean;
   weight: number;
   advised: number | null;
   /** Who answers for a layer with red findings, and why. */

@@ -1,10 +1,11 @@
 import { drawMap, drawSwatch } from './reportMap.ts';
 import type { Paper } from '../paper.ts';
 import { faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, table, type Column } from './reportPage.ts';
+import { zoneSpan } from '../../../shared/catalog/zoneStyles.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
-import type { ReportLayer, ZoneReport } from './zoneReport.ts';
+import type { ReportLayer, ReportZone, ZoneReport } from './zoneReport.ts';
 
 /** So that a block of two zones and two layers fills one page; more lines in the tables take their room from the map, down to the least. */
 const mapHeights = { A4: 212, Letter: 175 };
@@ -82,14 +83,14 @@ function byHandOf({ beginsByHand, handEdits }: ZoneReport, texts: ReportTexts): 
 }
 
 /** One sentence a reason; several measures that say the same are named in one. */
-function reasonsOf({ reasons, layers, language }: ZoneReport, texts: ReportTexts): string[] {
+function reasonsOf({ reasons, layers, language, advisedZones, fruitZones }: ZoneReport, texts: ReportTexts): string[] {
   const nameOf = (about: string) => layers.find(({ layerId }) => layerId === about)?.name ?? reportMeasures[language][about] ?? about;
   const list = new Intl.ListFormat(language, { type: 'conjunction' });
   // What fruit confirms comes before what it does not show.
   const isSilent = ({ code }: { code: string }) => code === 'fruit-silent';
   const inOrder = [...reasons.filter((reason) => !isSilent(reason)), ...reasons.filter(isSilent)];
   return [...groupBy(inOrder, ({ code }) => code)]
-    .map(([code, same]) => filled(texts.reason[code] ?? '', { about: list.format(same.flatMap(({ about }) => (about === null ? [] : [nameOf(about)]))) }))
+    .map(([code, same]) => filled((fruitZones === advisedZones ? undefined : texts.tried[code]) ?? texts.reason[code] ?? '', { zones: filled(texts.zonesN, { n: fruitZones ?? 1 }), about: list.format(same.flatMap(({ about }) => (about === null ? [] : [nameOf(about)]))) }))
     .filter((text) => text !== '');
 }
 
@@ -113,8 +114,9 @@ const shownLayers = 2;
 
 function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): void {
   const { unit, each } = squareMetres[report.units];
-  const total = report.zones.reduce((sum, zone) => sum + zone.areaM2, 0);
-  const layers = report.layers.filter((layer) => layer.weight > 0).slice(0, shownLayers);
+  const sum = (of: (zone: ReportZone) => number) => report.zones.reduce((all, zone) => all + of(zone), 0);
+  const total = sum(({ areaM2 }) => areaM2);
+  const layers = report.layers.filter((layer) => layer.weight > 0 && !layer.isClass).slice(0, shownLayers);
   const columns: Column[] = [
     { head: texts.zone as string, share: 5 },
     { head: `${texts.area as string}, ${unit}`, share: 2, isFigure: true },
@@ -131,8 +133,9 @@ function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): v
     figure(zone.missing, 0),
     ...layers.map((layer) => meanOf(zone.means.find(({ layerId }) => layerId === layer.layerId), layer, figure)),
   ]);
+  const whole = [report.blockName, figure(total / each, 2), figure(100, 0), figure(sum(({ vines }) => vines), 0), figure(sum(({ missing }) => missing), 0), ...layers.map(() => '')];
   heading(page, texts.zones as string);
-  table(page, columns, lines, { width: 30, draw: (line, x, y) => drawSwatch(page, { zone: report.zones[line]!, count: report.zones.length }, { x, y: y + 1, width: 22, height: 10 }) });
+  table(page, columns, report.zones.length > 1 ? [...lines, whole] : lines, { width: 30, draw: (line, x, y) => line < report.zones.length && drawSwatch(page, { zone: report.zones[line]!, count: zoneSpan(report.zones) }, { x, y: y + 1, width: 22, height: 10 }) });
 }
 
 function meanOf(stats: { mean: number | null; sd: number | null } | undefined, layer: ReportLayer, figure: Words['figure']): string {

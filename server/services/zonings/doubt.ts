@@ -11,7 +11,7 @@ import { Zoning } from '../../models/Zoning.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 import { runCompute } from '../../workers/computePool.ts';
 import { requireSameOutline } from './editZones.ts';
-import { readLabels } from './view.ts';
+import { ownNumber, readLabels } from './view.ts';
 
 const nothing: ZoningDoubt = { vines: 0, doubtful: 0, byZone: [], runs: [], geometry: null };
 const [clear, doubtful] = [1, 2];
@@ -19,7 +19,7 @@ const [clear, doubtful] = [1, 2];
 /** Where a zoning is in doubt: vines whose layers fit another zone more than half as well as their own, counted and drawn. */
 export async function readDoubt(access: Access, zoningId: string, zoneCount: number | null): Promise<ZoningDoubt> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
-  const count = zoneCount ?? zoning.chosenZones ?? Math.max(1, zoning.advisedZones ?? 1);
+  const count = zoneCount ?? ownNumber(zoning);
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: count });
   if (!candidate?.doubt || count < 2) return nothing;
   const ground = await loadBlockVines(access.estateId, zoning.blockId);

@@ -60,12 +60,12 @@ export async function publishZones(access: Access, zoningId: string, input: { re
   });
 }
 
-/** Two zonings of one block vine by vine. */
-export async function compareZonings(access: Access, zoningId: string, otherId: string): Promise<ZoningComparison> {
+/** Two zonings of one block vine by vine; `zones`: the number that the first is looked at with. */
+export async function compareZonings(access: Access, zoningId: string, { otherId, zones }: { otherId: string; zones: number | null }): Promise<ZoningComparison> {
   const one = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   const other = await Zoning.query().findOne({ estateId: access.estateId, id: otherId, blockId: one.blockId }).throwIfNotFound();
   const ground = await loadBlockVines(access.estateId, one.blockId);
-  const [a, b] = await Promise.all([zonesShown(access, one, ground), zonesShown(access, other, ground)]);
+  const [a, b] = await Promise.all([zonesShown(access, one, { ground, zones }), zonesShown(access, other, { ground })]);
   const both = [...a.keys()].filter((vine) => a[vine]! > 0 && b[vine]! > 0);
   const zonesOf = (zones: Uint8Array) => both.map((vine) => zones[vine]!);
   const pairs = groupBy(both, (vine) => `${a[vine]} ${b[vine]}`);
@@ -78,11 +78,11 @@ export async function compareZonings(access: Access, zoningId: string, otherId: 
   };
 }
 
-/** Zones of the vines as a page shows them: those kept, or the advised ones of a proposal. */
-export async function zonesShown(access: Access, zoning: Zoning, ground: BlockVines): Promise<Uint8Array> {
+/** Zones of the vines as a page shows them: of the number asked for, else those kept, fixed for the run or advised. */
+export async function zonesShown(access: Access, zoning: Zoning, { ground, zones = null }: { ground: BlockVines; zones?: number | null }): Promise<Uint8Array> {
   requireSameOutline(zoning, ground);
   if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', say('noResultToCompare', { number: zoning.number }));
-  const { labels, gridKey } = await readLabels(access, zoning.id, null);
+  const { labels, gridKey } = await readLabels(access, zoning.id, zones);
   return zonesOfVines(ground, { labels: Buffer.from(encodeCells(labels)), gridKey });
 }
 

@@ -30,11 +30,11 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   ]);
   const ground = await loadBlockVines(access.estateId, view.blockId);
   requireSameOutline(zoning, ground);
-  const { verdict, isJudged, advisedZones, reasons, differences, engineVersion, seed, number, name, state, blockName } = view;
+  const { verdict, isJudged, advisedZones, fruitZones, reasons, differences, engineVersion, seed, number, name, state, blockName } = view;
   const body = await zonesReport({
     language: person.language in reportTexts ? (person.language as ReportLanguage) : 'en',
     units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
-    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, differences, engineVersion, seed,
+    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, fruitZones, differences, engineVersion, seed,
     numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
     layers: await layersOf(access, view),
     zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
@@ -62,6 +62,6 @@ async function layersOf(access: Access, view: ZoningView): Promise<ReportLayer[]
   const placed = await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId));
   return view.layers.map(({ layerId, name, unit, type, measuredOn, role, weight, advised }) => {
     const override = placed.find(({ layer }) => layer.id === layerId)?.placed.override ?? null;
-    return { layerId, name, unit, decimals: layerType(type).decimals, measuredOn, isContext: role === 'context', weight, advised: advised?.weight ?? null, override: override && { by: override.by, reason: override.reason } };
+    return { layerId, name, unit, decimals: layerType(type).decimals, measuredOn, isContext: role === 'context', isClass: layerType(type).resampling === 'class', weight, advised: advised?.weight ?? null, override: override && { by: override.by, reason: override.reason } };
   });
 }

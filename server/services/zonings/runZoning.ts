@@ -78,9 +78,9 @@ async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Reco
     if (!stillWanted) return;
     await ZoningCandidate.query(trx).where({ estateId: zoning.estateId, zoningId: zoning.id }).delete();
     await ZoningCandidate.query(trx).insert(
-      candidates.map(({ k, labels, doubt, zones, differences }) => ({
+      candidates.map(({ k, labels, doubt, zones }) => ({
         estateId: zoning.estateId, zoningId: zoning.id, zoneCount: k, labels: Buffer.from(encodeCells(labels)), doubt: Buffer.from(encodeCells(doubt)),
-        zones: plainFigures({ differences, zones: zones.map((zone) => ({ ...zone, polygonsXY: null })) }),
+        zones: plainFigures({ zones: zones.map((zone) => ({ ...zone, polygonsXY: null })) }),
       })),
     );
     await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({

@@ -34,9 +34,9 @@ async function otherZones(access: Access, zoning: Zoning, ground: BlockVines): P
   const published = await Zoning.query().where({ estateId, blockId: zoning.blockId, gridKey: zoning.gridKey }).whereNot({ seasonId: zoning.seasonId }).whereNotNull('publishedAt').orderBy('publishedAt', 'desc');
   const last = published.filter((one, i) => published.findIndex((other) => other.seasonId === one.seasonId) === i).slice(0, 6);
   const seasons = await Season.query().where({ estateId }).findByIds(last.map(({ seasonId }) => seasonId)).select('id', 'name');
-  const mine = await zonesShown(access, zoning, ground);
+  const mine = await zonesShown(access, zoning, { ground });
   return Promise.all(last.map(async (other) => {
-    const theirs = await zonesShown(access, other, ground);
+    const theirs = await zonesShown(access, other, { ground });
     const both = [...mine.keys()].filter((vine) => mine[vine]! > 0 && theirs[vine]! > 0);
     const [a, b] = [both.map((vine) => mine[vine]!), both.map((vine) => theirs[vine]!)];
     return { zoningId: other.id, number: other.number, season: seasons.find(({ id }) => id === other.seasonId)?.name ?? '', zones: new Set(b).size, adjustedRand: adjustedRandIndex(a, b), vinesApart: vinesApart(a, b), vines: both.length };

@@ -3,7 +3,8 @@ import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
-import type { Zone as TracedZone, ZoneDifference, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
+import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
+import type { Zone as TracedZone, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
 import type { FruitCheck } from '../../../shared/analysis/verdictFruit.ts';
 import type { VerdictResult } from '../../../shared/analysis/verdict.ts';
 import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type ZoningRequestOptions, type ZoningView } from '../../../shared/contracts/zonings.ts';
@@ -41,7 +42,6 @@ interface StoredEvidence {
 
 interface StoredCandidate {
   zones: TracedZone[];
-  differences: ZoneDifference[];
 }
 
 const lineColumns = ['id', 'estateId', 'blockId', 'number', 'name', 'state', 'verdict', 'advisedZones', 'chosenZones', 'seed', 'revision', 'createdBy', 'createdAt', 'publishedAt', 'seasonId'] as const;
@@ -58,13 +58,15 @@ export async function listZonings(access: Access, blockId: string | null): Promi
 
 async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
   const people = await Person.query().findByIds([...new Set(rows.flatMap((row) => (row.createdBy ? [row.createdBy] : [])))]).select('id', 'name');
-  const jobs = await Job.query().where({ estateId: access.estateId, subjectType: 'zoning' }).whereIn('subjectId', rows.map((row) => row.id)).orderBy('createdAt').select('id', 'subjectId');
+  const jobs = await Job.query().where({ estateId: access.estateId, subjectType: 'zoning' }).whereIn('subjectId', rows.map((row) => row.id)).orderBy('createdAt').select('id', 'subjectId', 'state');
+  const jobOf = (row: Zoning) => jobs.findLast((job) => job.subjectId === row.id);
   return rows.map((row) => ({
     id: row.id,
     blockId: row.blockId,
     number: row.number,
     name: row.name,
     state: row.state,
+    isStopped: row.state === 'failed' && jobOf(row)?.state === 'cancelled',
     verdict: (row.verdict as VerdictResult | null)?.verdict ?? null,
     advisedZones: row.advisedZones,
     chosenZones: row.chosenZones,
@@ -73,7 +75,7 @@ async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
     createdBy: people.find((person) => person.id === row.createdBy)?.name ?? null,
     createdAt: row.createdAt.toISOString(),
     publishedAt: row.publishedAt?.toISOString() ?? null,
-    jobId: jobs.filter((job) => job.subjectId === row.id).at(-1)?.id ?? null,
+    jobId: jobOf(row)?.id ?? null,
   }));
 }
 
@@ -86,11 +88,13 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
   const evidence = zoning.evidence as StoredEvidence | null;
   const verdict = zoning.verdict as VerdictResult | null;
   const kept = zoning.baseLabels !== null;
-  const count = kept && shown === null ? (zoning.chosenZones ?? 1) : (shown ?? fixedNumber(options.data) ?? Math.max(1, zoning.advisedZones ?? 1));
+  const count = shown ?? ownNumber(zoning);
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: count });
   const stored = candidate ? (candidate.zones as StoredCandidate) : null;
   const showsKept = kept && (shown === null || shown === zoning.chosenZones);
   const job = line!.jobId === null ? undefined : await Job.query().findById(line!.jobId).select('problem');
+  const layers = options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [];
+  const zones = showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [];
   return {
     ...line!,
     blockName: ground.block.name,
@@ -98,26 +102,36 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     cellSizeM: evidence?.cellSizeM ?? ground.block.cellSizeM,
     options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, borders: 'free', principalComponents: false, withBlocks: [] },
     engineVersion: zoning.engineVersion,
-    layers: options.success ? await layersOf(access, options.data.layers.map(({ layerId }) => layerId), evidence) : [],
+    layers,
     isJudged: verdict?.isJudged ?? false,
     reasons: (verdict?.reasons ?? []).map((reason) => ({ ...reason, figures: { ...reason.figures } })),
     standsOut: evidence?.standsOut ? { type: 'MultiPolygon', coordinates: evidence.standsOut as unknown as ZoneView['geometry']['coordinates'] } : null,
     alsoOffer: evidence?.alsoOffer ?? [],
     evidence: evidence ? await evidenceRows(access, evidence.rows, ground) : [],
-    differences: stored ? [...stored.differences] : [],
+    // Of the zones as they are shown: a hand may have changed them since they were computed.
+    differences: zoneDifferences(zones, layers.flatMap(({ layerId, type }) => (layerType(type).resampling === 'mean' ? [layerId] : []))),
     warnings: (evidence?.warnings ?? []).map((warning) => ({ ...warning, figures: { ...warning.figures } })),
     fruit: (evidence?.fruit?.tests ?? []).map(({ measure, n, p, shuffle, leaveOneOutRSquared, anova }) => ({ measure, on: evidence?.fruitDays?.[measure] ?? [], n, p, shuffle, leaveOneOutRSquared, f: anova?.f ?? null, dfBetween: anova?.dfBetween ?? null, dfWithin: anova?.dfWithin ?? null, omegaSquared: anova?.omegaSquared ?? null })),
+    fruitZones: fruitZonesOf(zoning, options.data, evidence),
     beginsByHand: showsKept && candidate !== undefined && !zoning.baseLabels!.equals(candidate.labels),
     takenUpFrom: kept ? await takenUpFrom(access, zoningId) : null,
     shown: count,
-    zones: showsKept ? await keptZones(access, zoning) : stored && candidate ? proposedZones(stored, ground, candidate, zoning) : [],
+    zones,
     problem: job?.problem ?? null,
   };
 }
 
-/** The number of zones that was asked for, where it was not left to the advice. */
-function fixedNumber(options: ZoningRequestOptions | undefined): number | null {
-  return options === undefined || options.zones === 'advise' ? null : options.zones;
+/** The number of zones that is meant where nobody names one: those kept, else the number that was fixed for the run, else the advised one. */
+export function ownNumber({ baseLabels, chosenZones, options: stored, advisedZones }: Zoning): number {
+  if (baseLabels !== null) return chosenZones ?? 1;
+  const options = zoningOptions.safeParse(stored);
+  return options.success && options.data.zones !== 'advise' ? options.data.zones : Math.max(1, advisedZones ?? 1);
+}
+
+/** The number of zones that readings of fruit were asked about: a block that is one was tested with the number that would come next. */
+function fruitZonesOf({ advisedZones }: Zoning, options: ZoningRequestOptions | undefined, evidence: StoredEvidence | null): number | null {
+  const chosen = options === undefined || options.zones === 'advise' ? (advisedZones ?? 1) : options.zones;
+  return chosen > 1 ? chosen : (evidence?.bestSeveral ?? null);
 }
 
 /** The version a draft was taken up from, unless a number of zones was kept anew since. */
@@ -196,6 +210,6 @@ export function countVines(ground: BlockVines, zoneOf: Uint8Array, zone: number)
 export async function readLabels(access: Access, zoningId: string, zoneCount: number | null): Promise<{ labels: Uint8Array; gridKey: string }> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
   if (zoning.labels !== null && (zoneCount === null || zoneCount === zoning.chosenZones)) return { labels: decodeLabels(zoning.labels), gridKey: zoning.gridKey };
-  const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: zoneCount ?? zoning.advisedZones ?? 1 }).throwIfNotFound();
+  const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount: zoneCount ?? ownNumber(zoning) }).throwIfNotFound();
   return { labels: decodeLabels(candidate.labels), gridKey: zoning.gridKey };
 }

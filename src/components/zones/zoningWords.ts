@@ -1,4 +1,6 @@
 import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
+import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
+import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { Format } from '../../lib/format.ts';
 
@@ -11,7 +13,7 @@ export interface Verdict {
   readonly below: string;
 }
 
-/** The verdict as a person says it: the answer, why, and what is not known. */
+/** The verdict as a person says it: the answer, why, and what is not known. `zoning.zones`: those that stand on the screen. */
 export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; format: Format }): Verdict {
   const count = Math.max(1, zoning.advisedZones ?? 1);
   const answer = !zoning.isJudged ? t('zones.verdict.notJudged') : t(`zones.verdict.${zoning.verdict ?? 'test'}`, { zones: t(`zones.inWords.${count}`) }, count);
@@ -57,20 +59,26 @@ export function agreementWord(adjustedRand: number): 'same' | 'much' | 'partly' 
   return steps.find(([least]) => adjustedRand >= least)?.[1] ?? 'chance';
 }
 
+const triedCodes = new Set(['fruit-agrees', 'fruit-unclear', 'fruit-disagrees']);
+
 function reasonWords(zoning: ZoningView, code: string, { t, format }: { t: Translate; format: Format }): string {
   const reason = zoning.reasons.find((candidate) => candidate.code === code)!;
   const figures = Object.fromEntries(Object.entries(reason.figures).map(([name, value]) => [name, value === null ? '' : format.number(value, 2)]));
   const nameOf = (id: string) => zoning.layers.find((layer) => layer.layerId === id)?.name ?? t(`zones.fruit.${id}`);
   const about = format.list(zoning.reasons.flatMap((other) => (other.code === code && other.about !== null ? [nameOf(other.about)] : [])));
-  return t(`zones.reason.${code}`, { ...figures, about });
+  // A block that is one, or a number that was fixed: fruit was asked about other zones than those advised.
+  const tried = zoning.fruitZones !== null && zoning.fruitZones !== zoning.advisedZones && triedCodes.has(code) ? t('zones.count', { n: zoning.fruitZones }, zoning.fruitZones) : null;
+  if (tried !== null) return t(`zones.tried.${code}`, { about, zones: tried });
+  return t(`zones.reason.${code}`, { ...figures, ground: format.withUnit('area', reason.figures.hectares ?? 0, 2), about });
 }
 
-/** Size of the difference between zones, in the layer's own unit: a clear border may still divide two kinds of the same. */
-function differenceWords(zoning: ZoningView, { t, format }: { t: Translate; format: Format }): string {
-  const difference = zoning.differences[0];
-  const layer = zoning.layers.find((candidate) => candidate.layerId === difference?.layerId);
-  if (!difference || !layer || zoning.shown < 2) return '';
-  const decimals = layer.type === 'vigour' ? 2 : 1;
+/** Size of the difference between zones, in the unit of the first layer that voted: a clear border may still divide two kinds of the same. */
+function differenceWords({ layers, zones }: ZoningView, { t, format }: { t: Translate; format: Format }): string {
+  const measured = layers.filter(({ type }) => layerType(type).resampling === 'mean');
+  const layer = measured.find(({ weight }) => weight > 0) ?? measured[0];
+  const [difference] = layer ? zoneDifferences(zones, [layer.layerId]) : [];
+  if (!difference || !layer || zones.length < 2) return '';
+  const { decimals } = layerType(layer.type);
   const unit = layer.unit === '' ? '' : ` ${layer.unit}`;
   return t('zones.difference', { layer: layer.name, lowest: format.number(difference.lowest, decimals), highest: format.number(difference.highest, decimals), unit, within: format.number(difference.withinSd, decimals) });
 }

@@ -48,6 +48,11 @@ export const en = {
   inWords: ['one', 'two', 'three', 'four', 'five', 'six'],
   verdict: { one: 'Treat as one.', test: 'Worth testing as {zones} zones.', testOne: 'Worth testing as one zone.', several: 'Worth zoning into {zones}.', severalOne: 'Worth zoning as one.', notJudged: 'The layers alone cannot tell.' },
   stateOf: { running: 'Running', proposed: 'Proposed', draft: 'Draft', live: 'In force', retired: 'Earlier', failed: 'Failed' },
+  tried: {
+    'fruit-agrees': 'Fruit differs between the {zones} it was tested with ({about}).',
+    'fruit-unclear': 'Between the {zones} it was tested with fruit does not settle it yet ({about}).',
+    'fruit-disagrees': 'Fruit does not differ between the {zones} it was tested with ({about}).',
+  },
   reason: {
     'no-structure': 'The layers do not resemble themselves at the width of a workable patch: what they show is noise.',
     structure: 'The layers hold together at a workable width.',

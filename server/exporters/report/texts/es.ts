@@ -48,6 +48,11 @@ export const es = {
   inWords: ['una', 'dos', 'tres', 'cuatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como una.', test: 'Merece probarse como {zones} zonas.', testOne: 'Merece probarse como una zona.', several: 'Merece dividirse en {zones} zonas.', severalOne: 'Merece una zona.', notJudged: 'Las capas solas no bastan.' },
   stateOf: { running: 'Calculando', proposed: 'Propuesta', draft: 'Borrador', live: 'En vigor', retired: 'Anterior', failed: 'Fallido' },
+  tried: {
+    'fruit-agrees': 'La fruta difiere entre las {zones} probadas ({about}).',
+    'fruit-unclear': 'Entre las {zones} probadas la fruta aún no lo decide ({about}).',
+    'fruit-disagrees': 'La fruta no difiere entre las {zones} probadas ({about}).',
+  },
   reason: {
     'no-structure': 'Las capas no se parecen a sí mismas a la anchura de un rodal trabajable: muestran ruido.',
     structure: 'Las capas se mantienen a una anchura trabajable.',

@@ -48,6 +48,11 @@ export const fr = {
   inWords: ['une', 'deux', 'trois', 'quatre', 'cinq', 'six'],
   verdict: { one: 'À traiter comme une seule.', test: 'À essayer comme {zones} zones.', testOne: 'À essayer comme une zone.', several: 'À diviser en {zones} zones.', severalOne: 'À garder en une zone.', notJudged: 'Les couches seules ne peuvent le dire.' },
   stateOf: { running: 'En cours', proposed: 'Proposé', draft: 'Brouillon', live: 'En vigueur', retired: 'Antérieur', failed: 'Échoué' },
+  tried: {
+    'fruit-agrees': 'Le fruit diffère entre les {zones} essayées ({about}).',
+    'fruit-unclear': 'Entre les {zones} essayées, le fruit ne tranche pas encore ({about}).',
+    'fruit-disagrees': 'Le fruit ne diffère pas entre les {zones} essayées ({about}).',
+  },
   reason: {
     'no-structure': 'À la largeur d’une tache exploitable, les couches ne se ressemblent pas : c’est du bruit.',
     structure: 'Les couches se tiennent à une largeur exploitable.',

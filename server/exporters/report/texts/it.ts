@@ -48,6 +48,11 @@ export const it = {
   inWords: ['una', 'due', 'tre', 'quattro', 'cinque', 'sei'],
   verdict: { one: 'Trattare come una sola.', test: 'Vale la pena provare come {zones} zone.', testOne: 'Vale la pena provare come una zona.', several: 'Vale la divisione in {zones} zone.', severalOne: 'Vale una zona.', notJudged: 'Gli strati da soli non bastano.' },
   stateOf: { running: 'In corso', proposed: 'Proposta', draft: 'Bozza', live: 'In vigore', retired: 'Precedente', failed: 'Fallito' },
+  tried: {
+    'fruit-agrees': 'Il frutto differisce tra le {zones} provate ({about}).',
+    'fruit-unclear': 'Tra le {zones} provate il frutto non decide ancora ({about}).',
+    'fruit-disagrees': 'Il frutto non differisce tra le {zones} provate ({about}).',
+  },
   reason: {
     'no-structure': 'Alla larghezza di una macchia lavorabile gli strati non si somigliano: mostrano rumore.',
     structure: 'Gli strati tengono a una larghezza lavorabile.',

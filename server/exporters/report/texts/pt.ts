@@ -48,6 +48,11 @@ export const pt = {
   inWords: ['uma', 'duas', 'três', 'quatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como uma só.', test: 'Vale a pena experimentar como {zones} zonas.', testOne: 'Vale a pena experimentar como uma zona.', several: 'Merece dividir-se em {zones} zonas.', severalOne: 'Merece uma zona.', notJudged: 'As camadas sozinhas não chegam.' },
   stateOf: { running: 'A calcular', proposed: 'Proposta', draft: 'Rascunho', live: 'Em vigor', retired: 'Anterior', failed: 'Falhou' },
+  tried: {
+    'fruit-agrees': 'A fruta difere entre as {zones} testadas ({about}).',
+    'fruit-unclear': 'Entre as {zones} testadas a fruta ainda não decide ({about}).',
+    'fruit-disagrees': 'A fruta não difere entre as {zones} testadas ({about}).',
+  },
   reason: {
     'no-structure': 'À largura de uma mancha trabalhável as camadas não se parecem consigo: mostram ruído.',
     structure: 'As camadas mantêm-se a uma largura trabalhável.',

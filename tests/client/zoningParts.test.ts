@@ -1,0 +1,67 @@
+import { flushPromises } from '@vue/test-utils';
+import { describe, expect, it } from 'vitest';
+import type { BlockLayerView } from '../../shared/contracts/layers.ts';
+import type { ZoningRequestOptions, ZoneView, ZoningLine, ZoningView } from '../../shared/contracts/zonings.ts';
+import FruitTests from '../../src/components/zones/FruitTests.vue';
+import ZoningForm from '../../src/components/zones/ZoningForm.vue';
+import ZoningLayers from '../../src/components/zones/ZoningLayers.vue';
+import ZoningVersions from '../../src/components/zones/ZoningVersions.vue';
+import { mountWithTexts, textOf } from './mountWithTexts.ts';
+
+const layer = (id: string, type: string, measuredOn: string | null) => ({ id, name: id, type, measuredOn, readiness: 'ready', coverage: 1 }) as unknown as BlockLayerView;
+const square = (west: number): ZoneView['geometry'] => ({ type: 'MultiPolygon', coordinates: [[[[west, 0], [west + 1, 0], [west + 1, 1], [west, 1], [west, 0]]]] });
+const zone = (number: number) => ({ id: null, number, name: '', colour: null, areaM2: 100, vines: 10, missing: 0, doubtfulShare: null, patches: 1, layers: [], geometry: square(number) }) satisfies ZoneView;
+
+describe('what to zone from', () => {
+  // As the server lists them: what came last stands first.
+  const layers = [layer('Soil map', 'soilClass', null), layer('Height', 'elevation', '2022-02-01'), layer('Conductivity', 'conductivity', '2026-04-16'), layer('Flight 2026', 'vigour', '2026-06-20'), layer('Flight 2025', 'vigour', '2025-06-20')];
+
+  it('asks for layers that vote before those that do not, so that zones are numbered by vines or soil', async () => {
+    const form = await mountWithTexts(ZoningForm, { props: { layers } });
+    await form.findAll('li input[type=checkbox]').find((box) => textOf(box.element.closest('li')).includes('Height'))!.setValue(true);
+    await form.find('form').trigger('submit');
+    const [options] = form.emitted('run')![0] as [ZoningRequestOptions];
+    expect(options.layers.map(({ layerId }) => layerId)).toEqual(['Flight 2026', 'Conductivity', 'Height']);
+    form.unmount();
+  });
+
+  it('tells of two layers of one kind which year each is of', async () => {
+    const form = await mountWithTexts(ZoningForm, { props: { layers } });
+    for (const year of ['2026', '2025']) expect(textOf(form.findAll('li').find((line) => line.text().includes(`Flight ${year}`))!.element)).toMatch(new RegExp(`20 June? ${year}`));
+    form.unmount();
+    const list = await mountWithTexts(ZoningLayers, { props: { layers: [{ layerId: 'a', name: 'Flight', type: 'vigour', unit: '', measuredOn: '2025-06-20', role: 'evidence', weight: 1, advised: null }] } });
+    expect(list.text()).toContain('2025');
+    list.unmount();
+  });
+});
+
+describe('a run beside another', () => {
+  const line = (id: string, number: number) => ({ id, number, name: '', state: 'proposed', createdAt: '2026-06-20T10:00:00Z' }) as unknown as ZoningLine;
+  const view = (id: string, number: number, zones: ZoneView[]) => ({ ...line(id, number), zones }) as unknown as ZoningView;
+
+  it('shows the zones that were counted and says how many they are, whatever the page shows since', async () => {
+    const compared = { zones: [zone(1), zone(2), zone(4)], other: view('b', 2, [zone(1), zone(2)]), comparison: { vines: 30, vinesMoved: 3, vinesApart: 3, adjustedRand: 0.9, pairs: [{ from: 4, to: 2, vines: 7 }] } };
+    const page = await mountWithTexts(ZoningVersions, { props: { zoning: view('a', 1, [zone(1), zone(2)]), others: [line('a', 1), line('b', 2)], compared } });
+    await page.find('select').setValue('b');
+    await flushPromises();
+    expect(page.findAll('figcaption').map((caption) => textOf(caption.element).split(', ').at(-1))).toEqual(['3 zones', '2 zones']);
+    expect(page.findAll('tbody tr')).toHaveLength(3);
+    // The third of them is number 4 and keeps the look it has on the map, where four is the highest number.
+    const fills = (at: number) => page.findAll('svg[role=img]')[at]!.findAll('path[fill]').map((path) => path.attributes('fill')!).filter((fill) => fill.startsWith('#'));
+    const swatches = page.findAll('tbody th').map((head) => head.html());
+    fills(0).forEach((fill, at) => expect(swatches[at]).toContain(fill));
+    page.unmount();
+  });
+});
+
+describe('zones tested on fruit', () => {
+  const zoning = (fruitZones: number) => ({ fruitZones, options: { zones: 'advise' }, advisedZones: 1, fruit: [{ measure: 'brix', on: ['2026-08-01'], n: 40, f: 1.2, dfBetween: 1, dfWithin: 38, omegaSquared: 0.01, leaveOneOutRSquared: 0, p: 0.3, shuffle: 'rows' }] }) as unknown as ZoningView;
+
+  it('says how many zones were tested where the page shows another number, as with a block that is one', async () => {
+    for (const [shown, said] of [[1, true], [2, false], [3, true]] as const) {
+      const part = await mountWithTexts(FruitTests, { props: { zoning: zoning(2), shown } });
+      expect(part.text().includes('Tested with 2 zones'), `${shown}`).toBe(said);
+      part.unmount();
+    }
+  });
+});

@@ -11,6 +11,7 @@ import { groupBy } from '../groupBy.ts';
 import { adviseLayers, compareEdges, edgeTask, layersToCompare, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
 import type { Grid } from './grid.ts';
+import { cellsPerLabel } from './labels.ts';
 import { allReachWidth } from './labelsWidth.ts';
 import { polygonise } from './polygonise.ts';
 import { standOutGround } from './standOutGround.ts';
@@ -149,7 +150,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     evidence: evidenceRows(quality, { curve: evidence.curve, scores: count.scores }, candidates),
     candidates,
     componentShares: table.componentShares,
-    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, advisedK, table, againstGround: followed[chosenK - 1]!.againstGround })],
+    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, leftInAll: cellsPerLabel(cleaned[chosenK - 1]!.labels).reduce((count, cells, zone) => count + Number(zone > 0 && cells > 0), 0), advisedK, table, againstGround: followed[chosenK - 1]!.againstGround })],
   };
 }
 

@@ -35,6 +35,8 @@ const MUCH_AGAINST_GROUND = 0.1;
 
 export interface WarningInput {
   readonly chosen: ZoningCandidate;
+  /** Zones that clean-up left in all blocks together; one may lack some that another has. */
+  readonly leftInAll: number;
   readonly advisedK: number;
   readonly table: FeatureTable;
   /** Vines that borders along the rows put into another zone than their ground, as a share; null where borders are free. */
@@ -42,11 +44,12 @@ export interface WarningInput {
 }
 
 /** Things about the result that a person should know before using it. */
-export function resultWarnings({ chosen, advisedK, table, againstGround }: WarningInput): ZoningWarning[] {
+export function resultWarnings({ chosen, leftInAll, advisedK, table, againstGround }: WarningInput): ZoningWarning[] {
   const warnings: ZoningWarning[] = [];
   const inside = table.cells.length + table.incomplete.length;
   if (table.incomplete.length > 0) warnings.push({ code: 'cells-filled', about: null, figures: { cells: table.incomplete.length, share: table.incomplete.length / inside } });
-  if (chosen.zones.length < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: chosen.zones.length } });
+  if (leftInAll < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: leftInAll } });
+  if (chosen.zones.length < leftInAll) warnings.push({ code: 'zone-elsewhere', about: null, figures: { wanted: leftInAll, left: chosen.zones.length } });
   if (chosen.k !== advisedK) warnings.push({ code: 'number-fixed', about: null, figures: { chosen: chosen.k, advised: advisedK } });
   if (againstGround !== null && againstGround > MUCH_AGAINST_GROUND) warnings.push({ code: 'rows-against-ground', about: null, figures: { share: againstGround } });
   return warnings;

@@ -136,7 +136,7 @@ export interface ZoneEvidence {
 }
 
 export interface ZoningWarning {
-  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
+  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'zone-elsewhere' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
   readonly about: string | null;
   readonly figures: Readonly<Record<string, number>>;
 }

@@ -33,6 +33,8 @@ export const zoningLine = z.object({
   /** It failed because somebody stopped it. */
   isStopped: z.boolean(),
   verdict: z.enum(['one', 'test', 'several']).nullable(),
+  /** False where the layers alone could not tell: a block too small, or no measured layer. */
+  isJudged: z.boolean(),
   advisedZones: z.number().int().nullable(),
   chosenZones: z.number().int().nullable(),
   seed: z.number(),
@@ -94,7 +96,6 @@ export const zoningView = z.object({
   options: zoningOptions.extend({ layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })) }),
   engineVersion: z.string(),
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),
-  isJudged: z.boolean(),
   reasons: z.array(reason),
   /** Ground that stands out and that no number of zones shows; null without such ground, and for runs of before. */
   standsOut: multiPolygonGeometry.nullable(),

@@ -15,7 +15,10 @@ const oneStop = (text: string) => text.replace(/(\p{L})\.\.(?=\s|$)/gu, '$1.');
 const elided: Readonly<Record<string, string>> = { il: 'l’', Il: 'L’', del: 'dell’', Del: 'Dell’', dal: 'dall’', Dal: 'Dall’', al: 'all’', nel: 'nell’', sul: 'sull’' };
 /** Italian says "l’8" and "dall’11", as these numbers begin with a vowel. */
 const italianDays = (text: string) => text.replace(/(^|[^\p{L}])(il|Il|del|Del|dal|Dal|al|nel|sul) (?=(?:8|11)(?![\d.,]))/gu, (_, before: string, article: string) => before + elided[article]!);
-const settled = <Text>(text: Text): Text => (typeof text === 'string' ? ((i18n.global.locale.value === 'it' ? italianDays(oneStop(text)) : oneStop(text)) as Text) : text);
+/** French sets a space before : ; ? ! and inside « », at which no line may break: narrow before all but the colon. */
+const frenchSpaces = (text: string) => text.replace(/ (?=[;?!])/g, '\u202F').replace(/ (?=[:»])/g, '\u00A0').replace(/« /g, '«\u00A0');
+const ownWays: Readonly<Record<string, (text: string) => string>> = { it: italianDays, fr: frenchSpaces };
+const settled = <Text>(text: Text): Text => (typeof text === 'string' ? ((ownWays[i18n.global.locale.value] ?? String)(oneStop(text)) as Text) : text);
 
 export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: settled });
 

@@ -19,6 +19,12 @@ describe('texts as they are settled', () => {
     expect(said('it', '18 set')).toBe('dal 18 set al 18 set, il 18 set.');
   });
 
+  it('breaks no French line before a sign of punctuation', () => {
+    global.locale.value = 'fr' as never;
+    global.mergeLocaleMessage('fr', { settled: { signs: 'Vraiment ? Oui : « tel quel » ; voilà !' } } as never);
+    expect(global.t('settled.signs')).toBe('Vraiment\u202F? Oui\u00A0: «\u00A0tel quel\u00A0»\u202F; voilà\u202F!');
+  });
+
   it('leaves Spanish as it is and ends no sentence twice', () => {
     expect(said('es', '8 sept.')).toBe('dal 8 sept. al 8 sept., il 8 sept.');
   });

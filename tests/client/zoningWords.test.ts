@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { ZoningView } from '../../shared/contracts/zonings.ts';
-import { adviceWords, numberWords, verdictWords, warningWords } from '../../src/components/zones/zoningWords.ts';
+import { adviceWords, agreementWord, layerName, numberWords, verdictWords, warningWords } from '../../src/components/zones/zoningWords.ts';
 import { createFormat, type Format } from '../../src/lib/format.ts';
 
 /** Names of sentences with what is put into them, so that a wording may change. */
@@ -37,7 +37,7 @@ describe('how far the zones are apart', () => {
   const said = (zones: object[], over: object = {}) => verdictWords({ layers, zones, isJudged: true, verdict: 'several', advisedZones: 2, reasons: [], ...over } as unknown as ZoningView, { t: sentence, format: metric });
 
   it('is told of the zones that stand on the screen, in a layer that voted', () => {
-    const named = { layer: 'Soil', lowest: '20.0', highest: '31.0', unit: ' mS/m', within: '2.0' };
+    const named = { layer: 'Soil', lowest: '20.0', highest: '31.0', unit: '\u202FmS/m', within: '2.0' };
     expect(said([zone(1, 80, 20), zone(3, 90, 31)]).below).toContain(sentence('zones.difference', named));
     expect(said([zone(1, 80, 20), zone(2, 85, 26), zone(3, 90, 44)]).below).toContain(sentence('zones.difference', { ...named, highest: '44.0' }));
     expect(said([zone(1, 80, 20)]).below).not.toContain('zones.difference');
@@ -66,14 +66,29 @@ describe('what fruit says', () => {
 describe('what is said before zones are used', () => {
   it('names the layer and gives shares in percent', () => {
     const warnings: ZoningView['warnings'] = [{ code: 'layer-coverage', about: 'a', figures: { coverage: 0.72, limit: 0.9 } }, { code: 'number-fixed', about: null, figures: { chosen: 3, advised: 2 } }];
-    const layers = [{ layerId: 'a', name: 'Flight of June' }] as unknown as ZoningView['layers'];
+    const layers = [{ layerId: 'a', name: 'Flight of June', type: 'vigour' }] as unknown as ZoningView['layers'];
     expect(warningWords({ warnings, layers }, { t, format })).toEqual(['zones.warning.layer-coverage(72 %, 90 %, Flight of June)', 'zones.warning.number-fixed(3, 2, )']);
+  });
+});
+
+describe('a layer made from another', () => {
+  it('says which of them it is, since it bears the name of the other', () => {
+    const named = ['elevation', 'slope', 'northness'].map((type) => layerName({ name: 'Flight over the hill', type }, (key) => key));
+    expect(named).toEqual(['Flight over the hill', 'Flight over the hill, zones.layerType.slope', 'Flight over the hill, zones.layerType.northness']);
+  });
+});
+
+describe('how far zones agree', () => {
+  it('is called the same where no vine changes zone, and nearly the same where a few do', () => {
+    expect(agreementWord({ adjustedRand: 1, vinesApart: 0 })).toBe('identical');
+    expect(agreementWord({ adjustedRand: 0.999, vinesApart: 2 })).toBe('same');
+    expect(agreementWord({ adjustedRand: 0.1, vinesApart: 900 })).toBe('chance');
   });
 });
 
 describe('why a layer has its weight', () => {
   type Layer = ZoningView['layers'][number];
-  const layer = (layerId: string, role: Layer['role'], advised: Partial<NonNullable<Layer['advised']>> | null) => ({ layerId, name: layerId.toUpperCase(), role, advised: advised && { weight: 0, about: null, figures: {}, ...advised } }) as Layer;
+  const layer = (layerId: string, role: Layer['role'], advised: Partial<NonNullable<Layer['advised']>> | null) => ({ layerId, name: layerId.toUpperCase(), type: 'vigour', role, advised: advised && { weight: 0, about: null, figures: {}, ...advised } }) as Layer;
   const [vigour, soil] = [layer('vigour', 'evidence', { code: 'repeats', about: 'soil' }), layer('soil', 'evidence', { code: 'evidence' })];
   const edges = { correlation: 0.6, excess: 0.3, deviations: 4 };
   const why = (own: Layer) => adviceWords(own, [vigour, soil, own], { t, format });

@@ -1,5 +1,10 @@
+import { execFileSync } from 'node:child_process';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
 import { inflateSync } from 'node:zlib';
 import { describe, expect, it } from 'vitest';
+import { hasTool } from '../api/support/gdal.ts';
 import type { ReportLayer, ReportZone, ZoneReport } from '../../server/exporters/report/zoneReport.ts';
 import { zonesReport } from '../../server/exporters/report/zonesReport.ts';
 import { channels, zoneStyle } from '../../shared/catalog/zoneStyles.ts';
@@ -10,7 +15,7 @@ const layer = (layerId: string, over: Partial<ReportLayer> = {}): ReportLayer =>
 const zone = (number: number, over: Partial<ReportZone> = {}): ReportZone => ({ number, name: '', colour: null, areaM2: 10_000, vines: 100, missing: 3, means: [], polygonsLonLat: strip(3 + number / 1000), ...over });
 const report = (zones: readonly ReportZone[], layers: readonly ReportLayer[]): ZoneReport => ({
   language: 'en', units: 'metric', size: 'A4', today: new Date('2026-07-01'), timeZone: 'UTC', estateName: 'Estate', blockName: 'Long strip', number: 2, name: '', state: 'draft', madeAt: new Date('2026-06-30'),
-  verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, reasons: [], numbers: [], layers, differences: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
+  verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, shown: 3, warnings: [], reasons: [], numbers: [], layers, differences: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
   engineVersion: '1', seed: 1, smoothingM: 3, smallestPatchHa: 0.05, borders: 'free', standardise: 'plain', principalComponents: false, together: [], handEdits: 1, beginsByHand: false,
 });
 
@@ -26,6 +31,14 @@ async function drawn(input: ZoneReport): Promise<string> {
   }).join('\n');
 }
 
+function textOf(input: ZoneReport): Promise<string> {
+  const folder = mkdtempSync(join(tmpdir(), 'patchrow-report-'));
+  return zonesReport(input).then((bytes) => {
+    writeFileSync(join(folder, 'report.pdf'), bytes);
+    return execFileSync('pdftotext', ['-layout', join(folder, 'report.pdf'), '-'], { encoding: 'utf8' });
+  }).finally(() => rmSync(folder, { recursive: true, force: true }));
+}
+
 /** How often a colour is chosen to fill with. */
 function fills(operators: string, colour: string): number {
   const [red, green, blue] = channels(colour).map((value) => value / 255);
@@ -39,5 +52,17 @@ describe('the printed zones', () => {
     const [low, high] = [1, 3].map((number) => zoneStyle(number, { count: 3 }).fill);
     expect(fills(operators, high!)).toBe(2);
     expect(fills(operators, low!)).toBe(2);
+  });
+
+  it.skipIf(!hasTool('pdftotext'))('say that other zones are shown than those advised, what was warned of, and the ground of the whole', async () => {
+    const input = { ...report([zone(1), zone(2)], [layer('Flight'), layer('Soil', { isClass: true }), layer('Height', { weight: 0 })]), shown: 2, reasons: [{ code: 'structure', about: null }], warnings: [{ code: 'rows-against-ground', about: null, figures: { share: 0.61 } }], differences: ['Flight', 'Height'].map((layerId) => ({ layerId, lowest: 1, highest: 2, withinSd: 0.5 })) };
+    const text = (await textOf({ ...input, zones: input.zones.map((one) => ({ ...one, means: [{ layerId: 'Soil', mean: 1.5, sd: 0.5 }] })) })).replace(/\s+/g, ' ');
+    expect(text).toContain('Number of zones shown here: 2; advised: 3.');
+    expect(text).toContain('61 % of the vines stand in another zone than their ground');
+    expect(text).toMatch(/Long strip 2\.00 100 200 6/);
+    // A class has no mean, and a layer without a vote explains nothing.
+    expect(text).not.toContain('1.50');
+    expect(text).toContain('Between zones Flight runs from 1.00 to 2.00');
+    expect(text).not.toContain('Between zones Height');
   });
 });

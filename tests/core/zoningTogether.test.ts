@@ -129,3 +129,13 @@ describe('coarser cells', () => {
     expect(onCellsOf(2, { grid: fine, layers: [] }).grid).toBe(fine);
   });
 });
+
+describe('a block that lacks a zone that another has', () => {
+  it('is told so, and not that small patches joined their neighbours', () => {
+    const [here, there] = [block(rectangle(400_000, 180, 90), [0.2, 0.2, 0.5], 1), block(rectangle(401_000, 180, 90), [0.2, 0.5, 0.8], 2)];
+    const codes = (of: BlockInput, beside: BlockInput) => makeZoning({ ...of, together: [beside], options: { zones: 3 } }).warnings.map(({ code, figures }) => [code, figures.left]);
+    expect(codes(here, there)).toContainEqual(['zone-elsewhere', 2]);
+    expect(codes(here, there).map(([code]) => code)).not.toContain('zone-vanished');
+    expect(codes(there, here).map(([code]) => code)).not.toContain('zone-elsewhere');
+  });
+});

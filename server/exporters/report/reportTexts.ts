@@ -17,6 +17,10 @@ export interface ReportTexts {
   readonly number: Readonly<Record<NumberNote['code'], string>>;
   readonly stateOf: Readonly<Record<string, string>>;
   readonly reason: Readonly<Record<string, string>>;
+  /** Kinds of layers that are made from another and bear its name. */
+  readonly derived: Readonly<Record<string, string>>;
+  /** What a person should know before using the zones, by code. */
+  readonly warning: Readonly<Record<string, string>>;
   /** What fruit says of another number of zones than the advised one, by code. */
   readonly tried: Readonly<Record<string, string>>;
 }

@@ -19,6 +19,10 @@ export interface ZoneReport {
   isJudged: boolean;
   advisedZones: number | null;
   reasons: readonly { code: string; about: string | null }[];
+  /** Number of zones that the report shows. */
+  shown: number;
+  /** What a person should know of them. */
+  warnings: readonly { code: string; about: string | null; figures: Readonly<Record<string, number | null>> }[];
   /** Number of zones that was tested on fruit. */
   fruitZones: number | null;
   /** What is said of the number of zones beside others. */

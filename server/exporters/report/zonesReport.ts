@@ -25,7 +25,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(verdict);
   page.moveDown(0.4);
   const mapTop = page.y;
-  const lines = Math.max(0, report.zones.length - 2) + Math.max(0, report.layers.length - 2);
+  const lines = (report.zones.length > 1 ? report.zones.length - 1 : 0) + Math.max(0, report.layers.length - 2);
   const mapHeight = Math.max(leastMapHeight, mapHeights[report.size] - lines * lineHeight);
   drawMap(page, report, { x: margin, y: mapTop, width: innerWidth(page), height: mapHeight });
   page.x = margin;
@@ -33,7 +33,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   zoneTable(page, report, words);
   if (report.reasons.length > 0) {
     heading(page, words.texts.why as string);
-    paragraph(page, [...byHandOf(report, words.texts), ...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
+    paragraph(page, [...byHandOf(report, words.texts), ...shownOf(report, words), ...reasonsOf(report, words.texts), ...numbersOf(report, words), ...differencesOf(report, words)].join(' '));
   }
   layerTable(page, report, words);
   method(page, report, words);
@@ -59,8 +59,8 @@ function wordsOf({ language: spoken, units, timeZone, smallestPatchHa }: ZoneRep
     texts: reportTexts[spoken],
     figure,
     day: (at) => new Intl.DateTimeFormat(language, { dateStyle: 'long', timeZone }).format(at),
-    patch: `${figure((smallestPatchHa * 10_000) / squareMetres[units].each, 2)} ${squareMetres[units].unit}`,
-    length: (metres, decimals) => (units === 'us' ? `${figure(metres / 0.3048, decimals)} ft` : `${figure(metres, decimals)} m`),
+    patch: `${figure((smallestPatchHa * 10_000) / squareMetres[units].each, 2)}\u00A0${squareMetres[units].unit}`,
+    length: (metres, decimals) => (units === 'us' ? `${figure(metres / 0.3048, decimals)}\u00A0ft` : `${figure(metres, decimals)}\u00A0m`),
   };
 }
 
@@ -82,10 +82,22 @@ function byHandOf({ beginsByHand, handEdits }: ZoneReport, texts: ReportTexts): 
   return handEdits > 0 ? [filled(texts.byHand as string, { n: handEdits })] : [];
 }
 
+/** That other zones are shown than those advised, and what is to be known of them before they are used. */
+function shownOf({ shown, advisedZones, warnings, layers }: ZoneReport, { texts, figure }: Words): string[] {
+  const other = advisedZones !== null && shown !== advisedZones ? [filled(texts.shownOther as string, { shown, advised: advisedZones })] : [];
+  const said = warnings.map(({ code, about, figures }) => {
+    const named = Object.entries(figures).map(([name, value]) => [name, shares.has(name) ? `${figure(100 * (value ?? 0), 0)}\u00A0%` : figure(value ?? 0, 0)]);
+    return filled(texts.warning[code] ?? '', { ...Object.fromEntries(named), about: layers.find(({ layerId }) => layerId === about)?.name ?? '' });
+  });
+  return [...other, ...said.filter((text) => text !== '')];
+}
+
+const shares = new Set(['coverage', 'share']);
+
 /** One sentence a reason; several measures that say the same are named in one. */
 function reasonsOf({ reasons, layers, language, advisedZones, fruitZones }: ZoneReport, texts: ReportTexts): string[] {
   const nameOf = (about: string) => layers.find(({ layerId }) => layerId === about)?.name ?? reportMeasures[language][about] ?? about;
-  const list = new Intl.ListFormat(language, { type: 'conjunction' });
+  const list = new Intl.ListFormat(language === 'en' ? 'en-GB' : language, { type: 'conjunction' });
   // What fruit confirms comes before what it does not show.
   const isSilent = ({ code }: { code: string }) => code === 'fruit-silent';
   const inOrder = [...reasons.filter((reason) => !isSilent(reason)), ...reasons.filter(isSilent)];
@@ -95,7 +107,7 @@ function reasonsOf({ reasons, layers, language, advisedZones, fruitZones }: Zone
 }
 
 function numbersOf({ numbers }: ZoneReport, { texts, figure }: Words): string[] {
-  const share = (value: number) => `${figure(100 * value, 0)} %`;
+  const share = (value: number) => `${figure(100 * value, 0)}\u00A0%`;
   return numbers.map(({ code, k, share: of, ownShare }) => filled(texts.number[code], { zones: filled(texts.zonesN, { n: k }), share: share(of), own: share(ownShare) }));
 }
 
@@ -103,8 +115,9 @@ function differencesOf({ differences, layers, zones }: ZoneReport, { texts, figu
   if (zones.length < 2) return [];
   return differences.flatMap(({ layerId, lowest, highest, withinSd }) => {
     const layer = layers.find((candidate) => candidate.layerId === layerId);
-    if (!layer) return [];
-    const unit = layer.unit ? ` ${layer.unit}` : '';
+    // One that had no vote explains nothing.
+    if (!layer || layer.weight === 0) return [];
+    const unit = layer.unit ? `\u00A0${layer.unit}` : '';
     return [filled(texts.difference as string, { layer: layer.name, lowest: figure(lowest, layer.decimals), highest: figure(highest, layer.decimals), within: figure(withinSd, layer.decimals), unit })];
   });
 }
@@ -118,11 +131,11 @@ function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): v
   const total = sum(({ areaM2 }) => areaM2);
   const layers = report.layers.filter((layer) => layer.weight > 0 && !layer.isClass).slice(0, shownLayers);
   const columns: Column[] = [
-    { head: texts.zone as string, share: 5 },
-    { head: `${texts.area as string}, ${unit}`, share: 2, isFigure: true },
+    { head: texts.zone as string, share: 4 },
+    { head: `${texts.area as string}, ${unit}`, share: 2.4, isFigure: true },
     { head: `${texts.share as string}, %`, share: 2, isFigure: true },
     { head: texts.vines as string, share: 2, isFigure: true },
-    { head: texts.missing as string, share: 2, isFigure: true },
+    { head: texts.missing as string, share: 2.6, isFigure: true },
     ...layers.map((layer) => ({ head: layer.unit ? `${layer.name}, ${layer.unit}` : layer.name, share: 3, isFigure: true })),
   ];
   const lines = report.zones.map((zone) => [

@@ -31,12 +31,14 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   const ground = await loadBlockVines(access.estateId, view.blockId);
   requireSameOutline(zoning, ground);
   const { verdict, isJudged, advisedZones, fruitZones, reasons, differences, engineVersion, seed, number, name, state, blockName } = view;
+  const language = person.language in reportTexts ? (person.language as ReportLanguage) : 'en';
   const body = await zonesReport({
-    language: person.language in reportTexts ? (person.language as ReportLanguage) : 'en',
+    language,
     units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
     blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, fruitZones, differences, engineVersion, seed,
+    shown: view.shown, warnings: warningsOf(view),
     numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
-    layers: await layersOf(access, view),
+    layers: await layersOf(access, view, reportTexts[language].derived),
     zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
     reasons: reasons.flatMap((reason) => (reason.code === 'stands-out-apart' && view.standsOut ? [reason, { code: 'stands-out-where', about: null }] : [reason])),
     standsOut: (view.standsOut?.coordinates ?? null) as unknown as MultiPolygonLonLat | null,
@@ -50,6 +52,14 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };
 }
 
+/** What a run warned of; of borders and lost zones only for the number that it was made with. That another is shown is said by itself. */
+function warningsOf({ warnings, shown, options, advisedZones }: ZoningView): ZoningView['warnings'] {
+  const made = options.zones === 'advise' ? (advisedZones ?? 1) : options.zones;
+  return warnings.filter(({ code }) => code !== 'number-fixed' && (shown === made || !ofNumber.has(code)));
+}
+
+const ofNumber = new Set(['zone-vanished', 'zone-elsewhere', 'rows-against-ground']);
+
 /** Names, numbers and colours leave the ground as it was computed. */
 const harmless = new Set(['rename', 'renumber', 'recolour']);
 
@@ -58,10 +68,10 @@ async function handEdits(access: Access, zoningId: string): Promise<number> {
   return edits.filter(({ operation }) => !harmless.has((operation as { edit: { kind: string } }).edit.kind)).length;
 }
 
-async function layersOf(access: Access, view: ZoningView): Promise<ReportLayer[]> {
+async function layersOf(access: Access, view: ZoningView, derived: Readonly<Record<string, string>>): Promise<ReportLayer[]> {
   const placed = await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId));
   return view.layers.map(({ layerId, name, unit, type, measuredOn, role, weight, advised }) => {
     const override = placed.find(({ layer }) => layer.id === layerId)?.placed.override ?? null;
-    return { layerId, name, unit, decimals: layerType(type).decimals, measuredOn, isContext: role === 'context', isClass: layerType(type).resampling === 'class', weight, advised: advised?.weight ?? null, override: override && { by: override.by, reason: override.reason } };
+    return { layerId, name: layerType(type).derived ? `${name}, ${derived[type] ?? type}` : name, unit, decimals: layerType(type).decimals, measuredOn, isContext: role === 'context', isClass: layerType(type).resampling === 'class', weight, advised: advised?.weight ?? null, override: override && { by: override.by, reason: override.reason } };
   });
 }

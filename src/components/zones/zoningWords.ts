@@ -2,7 +2,7 @@ import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
-import type { Format } from '../../lib/format.ts';
+import { thinSpace, type Format } from '../../lib/format.ts';
 
 type Layer = ZoningView['layers'][number];
 type Translate = (key: string, named?: Record<string, unknown>, plural?: number) => string;
@@ -35,11 +35,16 @@ export function numberWords({ advisedZones, alsoOffer, evidence }: ZoningView, {
 
 const shares = new Set(['coverage', 'limit', 'share']);
 
+/** Slope and aspects are made from a height model and bear its name: each says which of them it is. */
+export function layerName({ name, type }: Pick<Layer, 'name' | 'type'>, t: Translate): string {
+  return layerType(type).derived ? `${name}, ${t(`zones.layerType.${type}`)}` : name;
+}
+
 /** What a person should know before using the zones, a sentence each. */
 export function warningWords({ warnings, layers }: Pick<ZoningView, 'warnings' | 'layers'>, { t, format }: { t: Translate; format: Format }): string[] {
   return warnings.map(({ code, about, figures }) => {
     const named = Object.entries(figures).map(([name, value]) => [name, value === null ? '' : shares.has(name) ? format.percent(value) : format.number(value)]);
-    return t(`zones.warning.${code}`, { ...Object.fromEntries(named), about: layers.find(({ layerId }) => layerId === about)?.name ?? '' });
+    return t(`zones.warning.${code}`, { ...Object.fromEntries(named), about: nameIn(layers, about, t) ?? '' });
   });
 }
 
@@ -50,13 +55,19 @@ export function adviceWords({ advised }: Layer, layers: readonly Layer[], { t, f
   const isUnknown = code === 'context-off' && figures.correlation === undefined;
   // Edges of terrain and maps are compared with those of all measured layers together.
   const beside = layers.filter(({ layerId, role }) => (code === 'context-offered' ? role === 'evidence' : layerId === about));
-  return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map(({ name }) => name)), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
+  return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map((layer) => layerName(layer, t))), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
 }
 
-/** What an adjusted Rand index means, in five steps of our own. */
-export function agreementWord(adjustedRand: number): 'same' | 'much' | 'partly' | 'little' | 'chance' {
+/** How far zones agree: the same for every vine, else by the adjusted Rand index in five steps of our own. */
+export function agreementWord({ adjustedRand, vinesApart }: { adjustedRand: number; vinesApart: number }): 'identical' | 'same' | 'much' | 'partly' | 'little' | 'chance' {
+  if (vinesApart === 0) return 'identical';
   const steps = [[0.9, 'same'], [0.65, 'much'], [0.4, 'partly'], [0.15, 'little']] as const;
   return steps.find(([least]) => adjustedRand >= least)?.[1] ?? 'chance';
+}
+
+function nameIn(layers: readonly Layer[], id: string | null, t: Translate): string | undefined {
+  const layer = layers.find(({ layerId }) => layerId === id);
+  return layer && layerName(layer, t);
 }
 
 const triedCodes = new Set(['fruit-agrees', 'fruit-unclear', 'fruit-disagrees']);
@@ -64,7 +75,7 @@ const triedCodes = new Set(['fruit-agrees', 'fruit-unclear', 'fruit-disagrees'])
 function reasonWords(zoning: ZoningView, code: string, { t, format }: { t: Translate; format: Format }): string {
   const reason = zoning.reasons.find((candidate) => candidate.code === code)!;
   const figures = Object.fromEntries(Object.entries(reason.figures).map(([name, value]) => [name, value === null ? '' : format.number(value, 2)]));
-  const nameOf = (id: string) => zoning.layers.find((layer) => layer.layerId === id)?.name ?? t(`zones.fruit.${id}`);
+  const nameOf = (id: string) => nameIn(zoning.layers, id, t) ?? t(`zones.fruit.${id}`);
   const about = format.list(zoning.reasons.flatMap((other) => (other.code === code && other.about !== null ? [nameOf(other.about)] : [])));
   // A block that is one, or a number that was fixed: fruit was asked about other zones than those advised.
   const tried = zoning.fruitZones !== null && zoning.fruitZones !== zoning.advisedZones && triedCodes.has(code) ? t('zones.count', { n: zoning.fruitZones }, zoning.fruitZones) : null;
@@ -79,6 +90,6 @@ function differenceWords({ layers, zones }: ZoningView, { t, format }: { t: Tran
   const [difference] = layer ? zoneDifferences(zones, [layer.layerId]) : [];
   if (!difference || !layer || zones.length < 2) return '';
   const { decimals } = layerType(layer.type);
-  const unit = layer.unit === '' ? '' : ` ${layer.unit}`;
-  return t('zones.difference', { layer: layer.name, lowest: format.number(difference.lowest, decimals), highest: format.number(difference.highest, decimals), unit, within: format.number(difference.withinSd, decimals) });
+  const unit = layer.unit === '' ? '' : `${thinSpace}${layer.unit}`;
+  return t('zones.difference', { layer: layerName(layer, t), lowest: format.number(difference.lowest, decimals), highest: format.number(difference.highest, decimals), unit, within: format.number(difference.withinSd, decimals) });
 }

@@ -34,7 +34,7 @@ export const en = {
   zoneN: 'Zone {n}',
   area: 'Area',
   vines: 'Vines',
-  difference: '{layer} runs from {lowest}{unit} in the lowest zone to {highest}{unit} in the highest, with ± {within}{unit} inside a zone.',
+  difference: 'Between zones {layer} runs from {lowest}{unit} to {highest}{unit}, with ± {within}{unit} inside a zone.',
   saysNothing: 'Zones of vigour promise nothing about ripeness or taste.',
   zonesN: '{n} zones',
   number: {
@@ -48,6 +48,16 @@ export const en = {
   inWords: ['one', 'two', 'three', 'four', 'five', 'six'],
   verdict: { one: 'Treat as one.', test: 'Worth testing as {zones} zones.', testOne: 'Worth testing as one zone.', several: 'Worth zoning into {zones}.', severalOne: 'Worth zoning as one.', notJudged: 'The layers alone cannot tell.' },
   stateOf: { running: 'Running', proposed: 'Proposed', draft: 'Draft', live: 'In force', retired: 'Earlier', failed: 'Failed' },
+  shownOther: 'Number of zones shown here: {shown}; advised: {advised}.',
+  warning: {
+    'layer-constant': '{about} is the same everywhere in the block and was left out.',
+    'layer-coverage': '{about} covers {coverage} of the block; the rest was judged without it.',
+    'zone-vanished': '{wanted} zones were made, {left} were left after small patches joined their neighbours.',
+    'zone-elsewhere': 'This block has {left} of the {wanted} zones; the others lie in the blocks zoned along.',
+    'cells-filled': '{share} of the block lacks a layer there and was judged by the others; it counts as doubtful.',
+    'rows-against-ground': 'With borders along the rows {share} of the vines stand in another zone than their ground: the rows run across what the layers show.',
+  },
+  derived: { slope: 'slope', northness: 'facing north', eastness: 'facing east' },
   tried: {
     'fruit-agrees': 'Fruit differs between the {zones} it was tested with ({about}).',
     'fruit-unclear': 'Between the {zones} it was tested with fruit does not settle it yet ({about}).',
@@ -56,8 +66,8 @@ export const en = {
   reason: {
     'no-structure': 'The layers do not resemble themselves at the width of a workable patch: what they show is noise.',
     structure: 'The layers hold together at a workable width.',
-    plateaus: 'They show plateaus with steps between them, not only a slope.',
-    'slope-only': 'They change like a slope: the ends differ, a line between would be arbitrary.',
+    plateaus: 'The layers show plateaus with steps between them, not only a slope.',
+    'slope-only': 'The layers change like a slope: the ends differ, a line between would be arbitrary.',
     'stripes-evened': 'Stripes of the sensor were evened out first.',
     'stands-out': 'All of it is alike but for a small part that stands out by several deviations, and these zones show it.',
     'stands-out-apart': 'All of it is alike but for a small part that stands out by several deviations; no number of zones shows it.',

@@ -34,7 +34,7 @@ export const es = {
   zoneN: 'Zona {n}',
   area: 'Superficie',
   vines: 'Cepas',
-  difference: '{layer} va de {lowest}{unit} en la zona más baja a {highest}{unit} en la más alta, con ± {within}{unit} dentro de una zona.',
+  difference: 'De una zona a otra, {layer} va de {lowest}{unit} a {highest}{unit}, con ± {within}{unit} dentro de cada una.',
   saysNothing: 'Las zonas de vigor no prometen nada sobre madurez ni sabor.',
   zonesN: '{n} zonas',
   number: {
@@ -48,6 +48,16 @@ export const es = {
   inWords: ['una', 'dos', 'tres', 'cuatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como una.', test: 'Merece probarse como {zones} zonas.', testOne: 'Merece probarse como una zona.', several: 'Merece dividirse en {zones} zonas.', severalOne: 'Merece una zona.', notJudged: 'Las capas solas no bastan.' },
   stateOf: { running: 'Calculando', proposed: 'Propuesta', draft: 'Borrador', live: 'En vigor', retired: 'Anterior', failed: 'Fallido' },
+  shownOther: 'Número de zonas que se muestra aquí: {shown}; aconsejado: {advised}.',
+  warning: {
+    'layer-constant': '{about} es igual en toda la parcela y se dejó fuera.',
+    'layer-coverage': '{about} cubre el {coverage} de la parcela; el resto se juzgó sin ella.',
+    'zone-vanished': 'Se hicieron {wanted} zonas y quedaron {left} al unirse los rodales pequeños a sus vecinos.',
+    'zone-elsewhere': 'Esta parcela tiene {left} de las {wanted} zonas; las demás están en las parcelas zonificadas con ella.',
+    'cells-filled': 'En el {share} de la parcela falta una capa y se juzgó por las demás; cuenta como dudoso.',
+    'rows-against-ground': 'Con límites a lo largo de las hileras, el {share} de las cepas queda en otra zona que su terreno: las hileras cruzan lo que muestran las capas.',
+  },
+  derived: { slope: 'pendiente', northness: 'orientación norte', eastness: 'orientación este' },
   tried: {
     'fruit-agrees': 'La fruta difiere entre las {zones} probadas ({about}).',
     'fruit-unclear': 'Entre las {zones} probadas la fruta aún no lo decide ({about}).',
@@ -56,8 +66,8 @@ export const es = {
   reason: {
     'no-structure': 'Las capas no se parecen a sí mismas a la anchura de un rodal trabajable: muestran ruido.',
     structure: 'Las capas se mantienen a una anchura trabajable.',
-    plateaus: 'Muestran mesetas con escalones, no solo una pendiente.',
-    'slope-only': 'Cambian como una pendiente: los extremos difieren, una línea sería arbitraria.',
+    plateaus: 'Las capas muestran mesetas con escalones, no solo una pendiente.',
+    'slope-only': 'Las capas cambian como una pendiente: los extremos difieren, una línea sería arbitraria.',
     'stripes-evened': 'Antes se igualaron las bandas del sensor.',
     'stands-out': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas, y estas zonas la muestran.',
     'stands-out-apart': 'Todo se parece salvo una parte pequeña que destaca en varias desviaciones típicas; ningún número de zonas la muestra.',

@@ -34,7 +34,7 @@ export const fr = {
   zoneN: 'Zone {n}',
   area: 'Surface',
   vines: 'Ceps',
-  difference: '{layer} va de {lowest}{unit} dans la zone la plus basse à {highest}{unit} dans la plus haute, avec ± {within}{unit} à l’intérieur.',
+  difference: 'D’une zone à l’autre, {layer} va de {lowest}{unit} à {highest}{unit}, avec ± {within}{unit} à l’intérieur.',
   saysNothing: 'Des zones de vigueur ne promettent rien sur la maturité ni le goût.',
   zonesN: '{n} zones',
   number: {
@@ -48,6 +48,16 @@ export const fr = {
   inWords: ['une', 'deux', 'trois', 'quatre', 'cinq', 'six'],
   verdict: { one: 'À traiter comme une seule.', test: 'À essayer comme {zones} zones.', testOne: 'À essayer comme une zone.', several: 'À diviser en {zones} zones.', severalOne: 'À garder en une zone.', notJudged: 'Les couches seules ne peuvent le dire.' },
   stateOf: { running: 'En cours', proposed: 'Proposé', draft: 'Brouillon', live: 'En vigueur', retired: 'Antérieur', failed: 'Échoué' },
+  shownOther: 'Nombre de zones montré ici : {shown} ; conseillé : {advised}.',
+  warning: {
+    'layer-constant': '{about} est partout pareil dans la parcelle et a été laissé de côté.',
+    'layer-coverage': '{about} couvre {coverage} de la parcelle ; le reste a été jugé sans cela.',
+    'zone-vanished': '{wanted} zones ont été faites, {left} sont restées une fois les petites taches jointes à leurs voisines.',
+    'zone-elsewhere': 'Cette parcelle a {left} des {wanted} zones ; les autres sont dans les parcelles zonées avec elle.',
+    'cells-filled': 'Une couche manque sur {share} de la parcelle, jugée d’après les autres ; cette part compte comme douteuse.',
+    'rows-against-ground': 'Avec des limites le long des rangs, {share} des ceps sont dans une autre zone que leur terrain : les rangs traversent ce que montrent les couches.',
+  },
+  derived: { slope: 'pente', northness: 'exposition nord', eastness: 'exposition est' },
   tried: {
     'fruit-agrees': 'Le fruit diffère entre les {zones} essayées ({about}).',
     'fruit-unclear': 'Entre les {zones} essayées, le fruit ne tranche pas encore ({about}).',
@@ -56,8 +66,8 @@ export const fr = {
   reason: {
     'no-structure': 'À la largeur d’une tache exploitable, les couches ne se ressemblent pas : c’est du bruit.',
     structure: 'Les couches se tiennent à une largeur exploitable.',
-    plateaus: 'Elles montrent des paliers et des marches, pas seulement une pente.',
-    'slope-only': 'Elles changent comme une pente : les bouts diffèrent, une ligne serait arbitraire.',
+    plateaus: 'Les couches montrent des paliers et des marches, pas seulement une pente.',
+    'slope-only': 'Les couches changent comme une pente : les bouts diffèrent, une ligne serait arbitraire.',
     'stripes-evened': 'Les bandes du capteur ont d’abord été lissées.',
     'stands-out': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types, et ces zones la montrent.',
     'stands-out-apart': 'Tout se ressemble, sauf une petite partie qui s’en détache de plusieurs écarts types ; aucun nombre de zones ne la montre.',

@@ -34,7 +34,7 @@ export const it = {
   zoneN: 'Zona {n}',
   area: 'Superficie',
   vines: 'Ceppi',
-  difference: '{layer} va da {lowest}{unit} nella zona più bassa a {highest}{unit} nella più alta, con ± {within}{unit} dentro una zona.',
+  difference: 'Da una zona all’altra, {layer} va da {lowest}{unit} a {highest}{unit}, con ± {within}{unit} all’interno.',
   saysNothing: 'Le zone di vigoria non promettono nulla su maturazione o gusto.',
   zonesN: '{n} zone',
   number: {
@@ -48,6 +48,16 @@ export const it = {
   inWords: ['una', 'due', 'tre', 'quattro', 'cinque', 'sei'],
   verdict: { one: 'Trattare come una sola.', test: 'Vale la pena provare come {zones} zone.', testOne: 'Vale la pena provare come una zona.', several: 'Vale la divisione in {zones} zone.', severalOne: 'Vale una zona.', notJudged: 'Gli strati da soli non bastano.' },
   stateOf: { running: 'In corso', proposed: 'Proposta', draft: 'Bozza', live: 'In vigore', retired: 'Precedente', failed: 'Fallito' },
+  shownOther: 'Numero di zone mostrato qui: {shown}; consigliato: {advised}.',
+  warning: {
+    'layer-constant': '{about} è uguale in tutto l’appezzamento ed è stato lasciato fuori.',
+    'layer-coverage': '{about} copre il {coverage} dell’appezzamento; il resto è stato giudicato senza.',
+    'zone-vanished': 'Sono state fatte {wanted} zone, ne sono rimaste {left} dopo l’unione delle piccole macchie alle vicine.',
+    'zone-elsewhere': 'Questo appezzamento ha {left} delle {wanted} zone; le altre sono negli appezzamenti zonati con esso.',
+    'cells-filled': 'Sul {share} dell’appezzamento manca uno strato ed è stato giudicato dagli altri; conta come dubbio.',
+    'rows-against-ground': 'Con confini lungo i filari il {share} delle viti sta in un’altra zona che il suo terreno: i filari attraversano ciò che gli strati mostrano.',
+  },
+  derived: { slope: 'pendenza', northness: 'esposizione nord', eastness: 'esposizione est' },
   tried: {
     'fruit-agrees': 'Il frutto differisce tra le {zones} provate ({about}).',
     'fruit-unclear': 'Tra le {zones} provate il frutto non decide ancora ({about}).',
@@ -56,8 +66,8 @@ export const it = {
   reason: {
     'no-structure': 'Alla larghezza di una macchia lavorabile gli strati non si somigliano: mostrano rumore.',
     structure: 'Gli strati tengono a una larghezza lavorabile.',
-    plateaus: 'Mostrano ripiani con gradini, non solo una pendenza.',
-    'slope-only': 'Cambiano come una pendenza: gli estremi differiscono, una linea sarebbe arbitraria.',
+    plateaus: 'Gli strati mostrano ripiani con gradini, non solo una pendenza.',
+    'slope-only': 'Gli strati cambiano come una pendenza: gli estremi differiscono, una linea sarebbe arbitraria.',
     'stripes-evened': 'Prima sono state appianate le strisce del sensore.',
     'stands-out': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard, e queste zone la mostrano.',
     'stands-out-apart': 'Tutto si somiglia tranne una piccola parte che se ne stacca di diverse deviazioni standard; nessun numero di zone la mostra.',

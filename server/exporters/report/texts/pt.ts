@@ -34,7 +34,7 @@ export const pt = {
   zoneN: 'Zona {n}',
   area: 'Área',
   vines: 'Cepas',
-  difference: '{layer} vai de {lowest}{unit} na zona mais baixa a {highest}{unit} na mais alta, com ± {within}{unit} dentro de uma zona.',
+  difference: 'De uma zona para outra, {layer} vai de {lowest}{unit} a {highest}{unit}, com ± {within}{unit} no interior.',
   saysNothing: 'Zonas de vigor nada prometem sobre maturação ou sabor.',
   zonesN: '{n} zonas',
   number: {
@@ -48,6 +48,16 @@ export const pt = {
   inWords: ['uma', 'duas', 'três', 'quatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como uma só.', test: 'Vale a pena experimentar como {zones} zonas.', testOne: 'Vale a pena experimentar como uma zona.', several: 'Merece dividir-se em {zones} zonas.', severalOne: 'Merece uma zona.', notJudged: 'As camadas sozinhas não chegam.' },
   stateOf: { running: 'A calcular', proposed: 'Proposta', draft: 'Rascunho', live: 'Em vigor', retired: 'Anterior', failed: 'Falhou' },
+  shownOther: 'Número de zonas mostrado aqui: {shown}; aconselhado: {advised}.',
+  warning: {
+    'layer-constant': '{about} é igual em toda a parcela e ficou de fora.',
+    'layer-coverage': '{about} cobre {coverage} da parcela; o resto foi avaliado sem ela.',
+    'zone-vanished': 'Fizeram-se {wanted} zonas e ficaram {left} depois de as manchas pequenas se juntarem às vizinhas.',
+    'zone-elsewhere': 'Esta parcela tem {left} das {wanted} zonas; as outras estão nas parcelas zonadas com ela.',
+    'cells-filled': 'Em {share} da parcela falta uma camada e foi avaliada pelas outras; conta como duvidosa.',
+    'rows-against-ground': 'Com limites ao longo dos bardos, {share} das videiras ficam noutra zona que o seu terreno: os bardos atravessam o que as camadas mostram.',
+  },
+  derived: { slope: 'declive', northness: 'exposição norte', eastness: 'exposição leste' },
   tried: {
     'fruit-agrees': 'A fruta difere entre as {zones} testadas ({about}).',
     'fruit-unclear': 'Entre as {zones} testadas a fruta ainda não decide ({about}).',
@@ -56,8 +66,8 @@ export const pt = {
   reason: {
     'no-structure': 'À largura de uma mancha trabalhável as camadas não se parecem consigo: mostram ruído.',
     structure: 'As camadas mantêm-se a uma largura trabalhável.',
-    plateaus: 'Mostram patamares com degraus, não só um declive.',
-    'slope-only': 'Mudam como um declive: os extremos diferem, uma linha seria arbitrária.',
+    plateaus: 'As camadas mostram patamares com degraus, não só um declive.',
+    'slope-only': 'As camadas mudam como um declive: os extremos diferem, uma linha seria arbitrária.',
     'stripes-evened': 'Primeiro alisaram-se as faixas do sensor.',
     'stands-out': 'Tudo se parece, menos uma pequena parte que se destaca em vários desvios-padrão, e estas zonas mostram-na.',
     'stands-out-apart': 'Tudo se parece, menos uma pequena parte que se destaca em vários desvios-padrão; nenhum número de zonas a mostra.',

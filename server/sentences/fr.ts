@@ -207,7 +207,7 @@ export const fr: Record<SentenceKey, string> = {
   censusColumns: 'il faut trois colonnes, rang, cep et état, et cette ligne en a {count}.',
   censusRow: 'il n’y a pas de rang {row} dans cette parcelle.',
   censusVine: 'le rang {row} a les ceps 1 à {last}, pas {vine}.',
-  censusState: '« {word} » n’est pas un état ; écrivez manquant, mort, complant, hors type, malade ou vivant.',
+  censusState: '« {word} » n’est pas un état ; écrivez manquant, mort, complant, autre cépage, malade ou vivant.',
   tooManySignIns: 'Trop de connexions manquées depuis ici. Attendez un quart d’heure, puis réessayez.',
   tooManyTries: 'Trop d’essais manqués depuis ici. Attendez un quart d’heure, puis réessayez.',
   tooManyResets: 'Un nouveau mot de passe a été demandé trop souvent depuis ici. Attendez un quart d’heure, puis réessayez.',

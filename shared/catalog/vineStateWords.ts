@@ -7,7 +7,7 @@ const words: readonly (readonly [Marked, readonly string[]])[] = [
   ['missing', ['missing', 'miss', 'm', 'marra', 'manquant', 'fallanza', 'falha']],
   ['dead', ['dead', 'd', 'muerta', 'muerto', 'mort', 'morte', 'morto', 'morta']],
   ['replant', ['replant', 'young replant', 'r', 'reposicion', 'complant', 'rimpiazzo', 'retancha']],
-  ['offType', ['offtype', 'off-type', 'off type', 'other', 'o', 'otra variedad', 'hors type', 'fuori tipo', 'outra casta']],
+  ['offType', ['offtype', 'off-type', 'off type', 'other', 'other variety', 'o', 'otra variedad', 'hors type', 'autre cepage', 'fuori tipo', 'altro vitigno', 'outra casta']],
   ['sick', ['sick', 's', 'enferma', 'malade', 'malato', 'doente']],
   ['living', ['living', 'alive', 'l', 'viva', 'vivant', 'vivo', 'ok']],
 ];

@@ -71,7 +71,7 @@ export interface ReadTickets {
 type Use = 'ticketNo' | 'lot' | 'gross' | 'tare' | 'net' | 'unit' | 'day' | 'time';
 
 const words: Record<Use, readonly string[]> = {
-  ticketNo: ['ticket', 'boletin', 'bon', 'bolla', 'talao', 'number', 'numero', 'no', 'nr'],
+  ticketNo: ['ticket', 'boletin', 'bon', 'bolletta', 'bolla', 'talao', 'number', 'numero', 'no', 'nr'],
   lot: ['lot', 'lote', 'lotto'],
   gross: ['gross', 'bruto', 'brut', 'lordo'],
   tare: ['tare', 'tara'],

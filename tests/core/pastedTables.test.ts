@@ -114,6 +114,10 @@ describe('a table of scale tickets', () => {
     expect(readTickets('ticket;lot;gross;tare;date\nA-2;Marl red;12,400;4,000;2026-09-14\n', context, { decimalMark: '.', unit: 'kg' }).tickets[0]!.gross).toBe(12_400);
   });
 
+  it.each(['Ticket', 'Boletín', 'Bon', 'Bolletta', 'Talão'])('finds the column of ticket numbers by the word that the screens of a language have: %s', (title) => {
+    expect(readTickets(`${title};lot;net kg;date\nA-2;Marl red;2000;2026-09-14\n`, context).tickets.map(({ ticketNo }) => ticketNo)).toEqual(['A-2']);
+  });
+
   it('refuses what is known, doubled, of no lot, or whose net is wrong', () => {
     const lines = ['A-1,Marl red,900,100,800,2026-09-14', 'A-2,Nowhere,900,100,800,2026-09-14', 'A-3,Marl red,900,100,700,2026-09-14', 'A-4,Marl red,100,900,,2026-09-14', 'A-5,Marl red,900,100,,2026-02-30', 'A-6,Marl red,900,100,,2026-09-14', 'A-6,Marl red,900,100,,2026-09-14'];
     const { problems } = readTickets(`ticket,lot,gross kg,tare,net,date\n${lines.join('\n')}\n`, context);

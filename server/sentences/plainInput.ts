@@ -30,12 +30,12 @@ const sentences = {
     oneOf: 'Choisissez parmi : {list}.', extra: 'Il n’y a pas ici de champ de ce nom : {list}.',
   },
   it: {
-    least: 'Indicate {n} o più.', above: 'Indicate più di {n}.', most: 'Indicate {n} o meno.', below: 'Indicate meno di {n}.',
+    least: 'Indichi {n} o più.', above: 'Indichi più di {n}.', most: 'Indichi {n} o meno.', below: 'Indichi meno di {n}.',
     leastLetters: 'Caratteri attesi: {n} o più.', mostLetters: 'Caratteri permessi: {n} o meno.', empty: 'Non può restare vuoto.',
-    leastEntries: 'Elementi attesi: {n} o più.', oneEntry: 'Indicate almeno un elemento.', mostEntries: 'Elementi permessi: {n} o meno.',
-    missing: 'Questo manca.', number: 'Indicate un numero.', whole: 'Indicate un numero intero.', text: 'Indicate un testo.', yesNo: 'Indicate true o false.', list: 'Indicate un elenco.',
-    day: 'Indicate un giorno, per esempio 2026-09-14.', moment: 'Indicate giorno e ora, per esempio 2026-09-14T07:00:00Z.', email: 'Indicate un indirizzo di posta elettronica.', form: 'Non ha la forma attesa ({form}).',
-    oneOf: 'Scegliete tra: {list}.', extra: 'Qui non c’è un campo con questo nome: {list}.',
+    leastEntries: 'Elementi attesi: {n} o più.', oneEntry: 'Indichi almeno un elemento.', mostEntries: 'Elementi permessi: {n} o meno.',
+    missing: 'Questo manca.', number: 'Indichi un numero.', whole: 'Indichi un numero intero.', text: 'Indichi un testo.', yesNo: 'Indichi true o false.', list: 'Indichi un elenco.',
+    day: 'Indichi un giorno, per esempio 2026-09-14.', moment: 'Indichi giorno e ora, per esempio 2026-09-14T07:00:00Z.', email: 'Indichi un indirizzo di posta elettronica.', form: 'Non ha la forma attesa ({form}).',
+    oneOf: 'Scelga tra: {list}.', extra: 'Qui non c’è un campo con questo nome: {list}.',
   },
   pt: {
     least: 'Indique {n} ou mais.', above: 'Indique mais de {n}.', most: 'Indique {n} ou menos.', below: 'Indique menos de {n}.',

@@ -121,7 +121,7 @@ describe('the season letter', () => {
     const cost = (language: SeasonLetter['language'], readings: number, hours: number) => letterParts({ ...letter, language, block: { ...letter.block, readings, hours, sugar: null } })[2]!.join(' ');
     expect(cost('en', 1, 0.02)).toBe('Knowing it took about 1 minute at the vine for 1 reading, without the walk.');
     expect(cost('fr', 40, 0.8)).toMatch(/environ 48 minutes au cep pour 40 relevés/);
-    expect(cost('it', 1, 2)).toMatch(/circa 2 ore alla vite per 1 lettura/);
+    expect(cost('it', 1, 2)).toMatch(/circa 2 ore ai ceppi per 1 lettura/);
     expect(cost('pt', 0, 0)).toBe('Não há registo de leituras desta campanha.');
     const heldInOne = { ...letter, zones: letter.zones.map((zone, at) => ({ ...zone, held: at === 0 })) };
     expect(letterParts({ ...heldInOne, language: 'it' })[0]![0]).toMatch(/ha tenuto per 1 delle 2 zone\.$/);

@@ -1,6 +1,10 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { decodeLabels, encodeCells } from '../../shared/analysis/cellBytes.ts';
 import type { LotsBoard } from '../../shared/contracts/lots.ts';
 import type { ReviewView, TicketView } from '../../shared/contracts/tickets.ts';
+import { gridOf } from '../../server/ground/blockVines.ts';
+import { Zone } from '../../server/models/Zone.ts';
+import { Zoning } from '../../server/models/Zoning.ts';
 import { makeZonedBlock, type ZonedBlock } from './support/makeZonedBlock.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 
@@ -103,5 +107,45 @@ describe('a split that names ground outside its lot', () => {
     }
     expect((await maker.get(`${own}/tickets`)).body.items).toEqual([]);
     expect((await enter([line(shelf.blockId, null)])).status).toBe(201);
+  });
+});
+
+describe('a load whose zones were published anew after it was weighed', () => {
+  it('stays with the vines it came from, and is shared out where their zone was divided', async () => {
+    const { estateId, ownerId } = await app.addEstate('Published anew');
+    const bench = await makeZonedBlock({ estateId, personId: ownerId }, { name: 'Bench' });
+    const maker = await app.as((await app.addPerson(estateId, 'winemaker')).email);
+    const own = `/api/estates/${estateId}`;
+    const lot = (await maker.post(`${own}/lots`, { name: 'All of it' })).body.id as string;
+    await maker.write('put', `${own}/lots/${lot}/parts`).set('if-match', '"1"').send({ parts: bench.zoneIds.map((zoneId) => ({ zoneId })) });
+    const line = (zoneNumber: number, kg: number) => ({ blockId: bench.blockId, zoneNumber, kg, how: 'measured', by: 'scale' });
+    const sent = await maker.post(`${own}/tickets`, { lotId: lot, ticketNo: 'T', gross: 11_000, tare: 3000, weighedAt: '2026-09-26T09:00:00Z', split: [line(1, 6000), line(2, 2000)] });
+    expect(sent.status, sent.text).toBe(201);
+    const first = await Zoning.query().patchAndFetchById(bench.zoningId, { publishedAt: new Date('2026-06-02') });
+    const rows = await Zone.query().where({ zoningId: first.id }).orderBy('number').select('geometry', 'areaM2', 'name');
+    let version = 1;
+    /** Puts other zones in force: `zoneOf` by the number that a cell had in the first and its place in the block. */
+    const publish = async (zoneOf: (zone: number, cell: number) => number): Promise<void> => {
+      await Zoning.query().where({ estateId, state: 'live' }).patch({ state: 'retired' });
+      const { id: _id, createdAt: _at, ...same } = first;
+      const labels = decodeLabels(first.labels!).map((zone, cell) => (zone === 0 ? 0 : zoneOf(zone, cell)));
+      const next = await Zoning.query().insert({ ...same, number: ++version, state: 'live', publishedAt: new Date(), labels: Buffer.from(encodeCells(labels)) } as never);
+      const numbers = [...new Set(labels)].filter((zone) => zone > 0);
+      await Zone.query().insert(numbers.map((number) => ({ ...rows[(number - 1) % 2]!, estateId, zoningId: next.id, number, vineCount: 0 })) as never);
+    };
+    const tonnes = async () => ((await maker.get(`${own}/review`)).body as ReviewView).blocks[0]!.measures.find(({ measure }) => measure === 'yield')!;
+    const { areaHa } = ((await maker.get(`${own}/lots`)).body as LotsBoard).zones[0]!;
+    expect(await tonnes()).toMatchObject({ basis: 'weighed', highest: 1, lowest: 2 });
+    await publish((zone) => 3 - zone);
+    const swapped = await tonnes();
+    expect(swapped).toMatchObject({ basis: 'weighed', highest: 2, lowest: 1 });
+    expect([swapped.most * areaHa, swapped.least * areaHa].map((t) => Math.round(t * 1000))).toEqual([6000, 2000]);
+    // Numbers that the ticket does not know: nothing of the load is lost.
+    await publish((zone) => zone + 2);
+    expect(await tonnes()).toMatchObject({ basis: 'weighed', highest: 3, lowest: 4 });
+    // The first zone is divided row by row: what each half weighed nobody knows.
+    const { cols } = gridOf(bench.ground);
+    await publish((zone, cell) => (zone === 1 && Math.floor(cell / cols) % 2 === 0 ? 3 : zone));
+    expect(await tonnes()).toMatchObject({ basis: 'shared', differ: null });
   });
 });

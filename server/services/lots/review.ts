@@ -14,6 +14,7 @@ import { countingTickets } from './countingTickets.ts';
 import { loadBoardGround, type BoardGround } from './boardGround.ts';
 import { lotsThen } from './lotsThen.ts';
 import { forecastDates, lotForecast, reviewZones, type KnownOn } from './reviewZones.ts';
+import { splitsToday } from './splitsToday.ts';
 import { usedFactors } from './usedFactors.ts';
 import { figureOf } from './zoneOutlook.ts';
 import { zoneQuestion } from './zoneQuestion.ts';
@@ -35,7 +36,7 @@ export async function seasonReview(access: Access, options: { today: string }): 
     ScaleTicket.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)),
     PickNotice.query().where({ estateId }).whereIn('lotId', lots.map((lot) => lot.id)).orderBy('number'),
   ]);
-  const counting = countingTickets(tickets);
+  const counting = await splitsToday(estateId, ground, countingTickets(tickets));
   const dayOf = (at: Date) => dayIn(timeZone, at);
   const firstDays = lots.map((lot) => counting.filter((ticket) => ticket.lotId === lot.id).map(({ weighedAt }) => dayOf(weighedAt)).sort()[0] ?? null);
   const knownOn = await knownOnDays(estateId, ground, { scenarioId: scenario.id, days: [...firstDays.flatMap((day) => day ?? []), ...ground.blocks.flatMap((block) => forecastDates(ground, counting, { block, dayOf }))] });

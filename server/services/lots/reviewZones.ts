@@ -3,10 +3,9 @@ import { errorParts, type ErrorPart, type ErrorShare } from '../../../shared/cel
 import { lotTonnes } from '../../../shared/cellar/lots.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
 import type { BlockVines } from '../../ground/blockVines.ts';
-import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
 import { figureOf, zoneOutlooks, type UsedFactors, type ZoneOutlook } from './zoneOutlook.ts';
-import { shareIn, weighedOf } from './weighedZones.ts';
+import { shareIn, weighedOf, type WeighedLoad } from './weighedZones.ts';
 
 type ReviewedZone = ReviewView['zones'][number];
 const shownDates = 4;
@@ -16,7 +15,7 @@ const yieldMeasures = ['clusterCount', 'clusterWeight'];
  * Each zone that was weighed, by each day on which its forecast changed, and where the last error came from. What reached
  * the books after the block's first load was weighed is no forecast. `dayOf`: the estate's day of an instant.
  */
-export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[], { dayOf, knownOn }: { dayOf: (at: Date) => string; knownOn: KnownOn }): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
+export function reviewZones(ground: BoardGround, tickets: readonly WeighedLoad[], { dayOf, knownOn }: { dayOf: (at: Date) => string; knownOn: KnownOn }): { zones: ReviewedZone[]; parts: ErrorShare[]; partsOf: (blockId: string) => ErrorShare[] } {
   const all = ground.blocks.flatMap((block) => {
     const dates = forecastDates(ground, tickets, { block, dayOf });
     return block.zones.flatMap((zone, at) => {
@@ -53,13 +52,13 @@ export function reviewZones(ground: BoardGround, tickets: readonly ScaleTicket[]
 }
 
 /** When the first load with fruit of the block was weighed; null while none was. */
-function firstWeighed({ lots }: BoardGround, tickets: readonly ScaleTicket[], block: BoardBlock): Date | null {
+function firstWeighed({ lots }: BoardGround, tickets: readonly WeighedLoad[], block: BoardBlock): Date | null {
   const own = lots.filter((_, index) => block.zones.some((__, at) => shareIn(block, at, index) > 0)).map(({ id }) => id);
   return tickets.filter(({ lotId }) => own.includes(lotId)).map(({ weighedAt }) => weighedAt).sort((a, b) => a.getTime() - b.getTime())[0] ?? null;
 }
 
 /** Days on which clusters were counted or weighed and received, up to the day of the first load: each gave a forecast of its own. */
-export function forecastDates(ground: BoardGround, tickets: readonly ScaleTicket[], { block, dayOf }: { block: BoardBlock; dayOf: (at: Date) => string }): string[] {
+export function forecastDates(ground: BoardGround, tickets: readonly WeighedLoad[], { block, dayOf }: { block: BoardBlock; dayOf: (at: Date) => string }): string[] {
   const { readings } = block;
   const first = firstWeighed(ground, tickets, block);
   const until = first && dayOf(first);

@@ -3,6 +3,9 @@ import { isBearing } from '../../ground/blockVines.ts';
 import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
 
+/** A ticket that counts, its parts by the zones of today. */
+export type WeighedLoad = Pick<ScaleTicket, 'id' | 'lotId' | 'netKg' | 'weighedAt' | 'split'>;
+
 /** What the scale says of a zone, over all lots it was picked into. */
 export interface Weighed {
   kg: number;
@@ -24,7 +27,7 @@ type Load = Pick<Weighed, 'kg' | 'by' | 'bins'>;
 const sure: readonly Weighed['by'][] = ['scale', 'bins', 'shared'];
 
 /** Kilograms of a zone by the splits of tickets, else by expected tonnes within the lot; null when none of it was weighed. */
-export function weighedOf(ground: BoardGround, tickets: readonly ScaleTicket[], where: Where): Weighed | null {
+export function weighedOf(ground: BoardGround, tickets: readonly WeighedLoad[], where: Where): Weighed | null {
   const loads: Load[] = [];
   let share = 0;
   ground.lots.forEach((lot, index) => {
@@ -39,7 +42,7 @@ export function weighedOf(ground: BoardGround, tickets: readonly ScaleTicket[], 
   return { kg, share, bins: loads.reduce((sum, { bins }) => sum + bins, 0), by: sure[Math.max(...loads.map(({ by }) => sure.indexOf(by)))]! };
 }
 
-function loadsOf(ground: BoardGround, ticket: ScaleTicket, where: Where & { index: number }): Load[] {
+function loadsOf(ground: BoardGround, ticket: WeighedLoad, where: Where & { index: number }): Load[] {
   const { block, at, index } = where;
   const split = ticket.split as TicketSplit[];
   if (split.length === 0) return [parted(ticket.netKg, { own: expectedIn(block, at, index), whole: ground.blocks.reduce((sum, one) => sum + expectedOfBlock(one, index), 0) })];

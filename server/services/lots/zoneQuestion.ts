@@ -6,10 +6,9 @@ import { ADVISED_MINIMUM, sampleSize } from '../../../shared/sampling/sampleSize
 import { groupBy } from '../../../shared/groupBy.ts';
 import { visitMean, type VisitMean } from '../../ground/visitMean.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
-import type { ScaleTicket } from '../../models/ScaleTicket.ts';
 import { Season } from '../../models/Season.ts';
 import type { BoardBlock, BoardGround } from './boardGround.ts';
-import { weighedOf } from './weighedZones.ts';
+import { weighedOf, type WeighedLoad } from './weighedZones.ts';
 import { boardConfidence } from './zoneOutlook.ts';
 
 type Compared = ReviewView['blocks'][number]['measures'][number];
@@ -18,7 +17,7 @@ const fruit = ['brix', 'ph', 'ta'] as const;
 const asked = fruit.length + 1;
 
 /** Did the zones of a block matter, beside one block as a whole: by measure, with the hours that knowing it took. `tickets`: those that count. */
-export async function zoneQuestion(estateId: string, ground: BoardGround, { block, tickets }: { block: BoardBlock; tickets: readonly ScaleTicket[] }): Promise<Omit<ReviewView['blocks'][number], 'errorParts'>> {
+export async function zoneQuestion(estateId: string, ground: BoardGround, { block, tickets }: { block: BoardBlock; tickets: readonly WeighedLoad[] }): Promise<Omit<ReviewView['blocks'][number], 'errorParts'>> {
   const measures = [...fruit.flatMap((code) => compareFruit(ground, block, code) ?? []), ...compareYields(ground, block, tickets)];
   const thisSeason = judged(measures);
   const lastSeason = thisSeason === false ? await judgedBefore(estateId, ground, block) : null;
@@ -68,14 +67,14 @@ function compareMeans(means: readonly { zone: number; mean: VisitMean; weight: n
 }
 
 /** By the scale where it had every zone; as expected besides where it was not asked, or had the zones together. */
-function compareYields(ground: BoardGround, block: BoardBlock, tickets: readonly ScaleTicket[]): Compared[] {
+function compareYields(ground: BoardGround, block: BoardBlock, tickets: readonly WeighedLoad[]): Compared[] {
   const weighed = compareWeighed(ground, block, tickets);
   const expected = weighed === null || weighed.basis === 'shared' ? compareExpected(block) : null;
   return [weighed, expected].flatMap((found) => found ?? []);
 }
 
 /** Tonnes a hectare as weighed; null unless every zone was. A load shared out by rows or expectation says nothing of how zones differ. */
-function compareWeighed(ground: BoardGround, block: BoardBlock, tickets: readonly ScaleTicket[]): Compared | null {
+function compareWeighed(ground: BoardGround, block: BoardBlock, tickets: readonly WeighedLoad[]): Compared | null {
   const found = block.zones.flatMap((_, at) => weighedOf(ground, tickets, { block, at }) ?? []);
   if (found.length < 2 || found.length < block.zones.length) return null;
   const basis = found.some(({ by }) => by === 'shared') ? 'shared' : found.some(({ by }) => by === 'bins') ? 'bins' : 'weighed';

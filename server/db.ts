@@ -27,6 +27,7 @@ import * as m023 from '../migrations/023_lot_alcohol_methods.ts';
 import * as m024 from '../migrations/024_weather_history.ts';
 import * as m025 from '../migrations/025_blocks_without_rows.ts';
 import * as m026 from '../migrations/026_row_side.ts';
+import * as m027 from '../migrations/027_zones_taken_up.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -56,6 +57,7 @@ const migrations: Record<string, Knex.Migration> = {
   '024_weather_history': m024,
   '025_blocks_without_rows': m025,
   '026_row_side': m026,
+  '027_zones_taken_up': m027,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

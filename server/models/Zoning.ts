@@ -1,8 +1,9 @@
+import type { ZoneInfo } from '../../shared/analysis/edits.ts';
 import { EstateModel } from './BaseModel.ts';
 
 export class Zoning extends EstateModel {
   static override tableName = 'zonings';
-  static override jsonAttributes = ['options', 'verdict', 'evidence'];
+  static override jsonAttributes = ['options', 'verdict', 'evidence', 'baseZones'];
 
   declare blockId: string;
   declare seasonId: string;
@@ -18,6 +19,8 @@ export class Zoning extends EstateModel {
   declare advisedZones: number | null;
   declare chosenZones: number | null;
   declare baseLabels: Buffer | null;
+  /** Names and colours that the edits begin with. */
+  declare baseZones: ZoneInfo[];
   declare labels: Buffer | null;
   declare revision: number;
   declare publishedAt: Date | null;

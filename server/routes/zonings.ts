@@ -52,10 +52,10 @@ export function zoningRoutes(): Router {
     response.json(await keepPresence(accessOf(request), idParam(request, 'zoningId'), new Date()));
   });
   router.patch('/zonings/:zoningId', allow('zones.edit', 'propose'), async (request, response) => {
-    const { name, chosenZones } = zoningChange.parse(request.body);
+    const { name, chosenZones, revision } = zoningChange.parse(request.body);
     const zoningId = idParam(request, 'zoningId');
     if (name !== undefined) await nameZoning(accessOf(request), zoningId, name);
-    if (chosenZones !== undefined) await keepAsDraft(accessOf(request), zoningId, chosenZones);
+    if (chosenZones !== undefined) await keepAsDraft(accessOf(request), zoningId, chosenZones, revision);
     response.json(await viewZoning(accessOf(request), zoningId, null));
   });
   router.get('/zonings/:zoningId/edits', allow('estate.see', 'read'), async (request, response) => {

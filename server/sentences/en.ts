@@ -192,6 +192,7 @@ export const en = {
   notAWalkerHere: 'Somebody chosen may not record readings in this estate. Choose people who may, or change the role first.',
   nothingToUndo: 'There is no edit to undo.',
   nothingToRedo: 'There is no edit to redo.',
+  zonesInForceChanged: '{who} put version {number} of this block in force since you read what publishing will do. Load again and look; nothing was published.',
   zonesChangedBySomebody: 'Somebody changed these zones since you read them. Load them again; your step was not taken.',
   uploadUnfinished: 'Of {file} only {got} of {size} bytes have arrived. Go on with the upload first.',
   theFile: 'the file',

@@ -193,6 +193,7 @@ export const es: Record<SentenceKey, string> = {
   notAWalkerHere: 'Una de las personas elegidas no puede anotar lecturas en esta finca. Elija personas que puedan o cambie antes la función.',
   nothingToUndo: 'No hay ningún cambio que deshacer.',
   nothingToRedo: 'No hay ningún cambio que rehacer.',
+  zonesInForceChanged: '{who} puso en vigor la versión {number} de esta parcela desde que usted leyó qué hará publicar. Cargue otra vez y mírelo; no se publicó nada.',
   zonesChangedBySomebody: 'Alguien cambió estas zonas desde que usted las leyó. Cárguelas otra vez; su paso no se dio.',
   uploadUnfinished: 'De {file} solo han llegado {got} de {size} bytes. Continúe antes el envío.',
   theFile: 'este archivo',

@@ -193,6 +193,7 @@ export const fr: Record<SentenceKey, string> = {
   notAWalkerHere: 'Une des personnes choisies ne peut pas noter de mesures dans ce domaine. Choisissez des personnes qui le peuvent, ou changez d’abord le rôle.',
   nothingToUndo: 'Il n’y a aucune modification à annuler.',
   nothingToRedo: 'Il n’y a aucune modification à refaire.',
+  zonesInForceChanged: '{who} a mis en vigueur la version {number} de cette parcelle depuis que vous avez lu ce que fera la publication. Rechargez et regardez ; rien n’a été publié.',
   zonesChangedBySomebody: 'Quelqu’un a changé ces zones depuis votre lecture. Rechargez-les ; votre étape n’a pas été prise en compte.',
   uploadUnfinished: 'De {file}, seuls {got} octets sur {size} sont arrivés. Poursuivez d’abord l’envoi.',
   theFile: 'ce fichier',

@@ -193,6 +193,7 @@ export const it: Record<SentenceKey, string> = {
   notAWalkerHere: 'Una delle persone scelte non può annotare letture in questa tenuta. Scelga persone che possono farlo o cambi prima il ruolo.',
   nothingToUndo: 'Non c’è alcuna modifica da annullare.',
   nothingToRedo: 'Non c’è alcuna modifica da rifare.',
+  zonesInForceChanged: '{who} ha messo in vigore la versione {number} di questo appezzamento da quando lei ha letto che cosa farà la pubblicazione. Ricarichi e guardi; non è stato pubblicato nulla.',
   zonesChangedBySomebody: 'Qualcuno ha cambiato queste zone da quando le ha lette. Le ricarichi; il suo passo non è stato accettato.',
   uploadUnfinished: 'Di {file} sono arrivati solo {got} byte su {size}. Prima continui l’invio.',
   theFile: 'questo file',

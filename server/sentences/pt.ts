@@ -193,6 +193,7 @@ export const pt: Record<SentenceKey, string> = {
   notAWalkerHere: 'Uma das pessoas escolhidas não pode registar leituras nesta quinta. Escolha pessoas que possam ou mude primeiro a função.',
   nothingToUndo: 'Não há nenhuma alteração a desfazer.',
   nothingToRedo: 'Não há nenhuma alteração a refazer.',
+  zonesInForceChanged: '{who} pôs em vigor a versão {number} desta parcela desde que leu o que a publicação fará. Carregue de novo e veja; nada foi publicado.',
   zonesChangedBySomebody: 'Alguém alterou estas zonas desde que as leu. Carregue-as de novo; o seu passo não foi dado.',
   uploadUnfinished: 'De {file} só chegaram {got} de {size} bytes. Continue primeiro o envio.',
   theFile: 'este ficheiro',

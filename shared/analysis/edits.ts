@@ -10,6 +10,7 @@ import { labelsFromRuns } from './editsRuns.ts';
 import { splitCells } from './editsSplit.ts';
 import { assertCellCount, type Grid, type Labels } from './grid.ts';
 import { cellsPerLabel, relabelled } from './labels.ts';
+import { lowestFreeNumber, MAX_ZONE_NUMBER } from './zoneNumbers.ts';
 import { withoutSmall } from './zoningClean.ts';
 
 export interface ZoneInfo {
@@ -38,15 +39,13 @@ export type ZoneEdit =
   | { readonly kind: 'replace'; readonly runs: readonly number[]; readonly reason: 'snapped' | 'restored' }
   | { readonly kind: 'clean'; readonly minPatchHa: number; readonly narrowestM?: number };
 
-const MAX_ZONE_NUMBER = 60;
-
-/** Zones without names from labels. Throws AnalysisError unless exactly the cells inside carry a label. */
-export function zoneMapOf(grid: Grid, labels: Labels): ZoneMap {
+/** Zones from labels, with the names and colours that are known of them. Throws AnalysisError unless exactly the cells inside carry a label. */
+export function zoneMapOf(grid: Grid, labels: Labels, known: readonly ZoneInfo[] = []): ZoneMap {
   assertCellCount(grid, labels, 'The zoning');
   for (let cell = 0; cell < labels.length; cell++) {
     if (labels[cell]! > 0 !== (grid.inside[cell] === 1)) throw new AnalysisError('zoning-not-of-block', 'The zoning does not fill the block cell by cell; make it again on the present outline.');
   }
-  return withLabels({ labels, zones: [] }, labels);
+  return withLabels({ labels, zones: known }, labels);
 }
 
 /** Zones after all edits in order. */
@@ -147,7 +146,8 @@ function withLabels(map: ZoneMap, labels: Labels): ZoneMap {
 }
 
 function freeNumber(map: ZoneMap): number {
-  for (let number = 1; number <= MAX_ZONE_NUMBER; number++) if (!map.zones.some((info) => info.number === number)) return number;
+  const number = lowestFreeNumber(map.zones);
+  if (number !== null) return number;
   throw new AnalysisError('edit-too-many-zones', `A block has at most ${MAX_ZONE_NUMBER} zones; merge some first.`);
 }
 

@@ -119,7 +119,8 @@ export const zoningView = z.object({
 });
 export type ZoningView = z.infer<typeof zoningView>;
 
-export const zoningChange = z.object({ name: z.string().trim().max(80), chosenZones: z.number().int().min(1).max(6) }).partial();
+/** `revision`: the one on which a number of zones was chosen; left out, edits made meanwhile go with the draft that is begun anew. */
+export const zoningChange = z.object({ name: z.string().trim().max(80), chosenZones: z.number().int().min(1).max(6), revision: z.number().int() }).partial();
 
 const rowPart = z.object({ rowId: id, from: ordinal.nullable().default(null), to: ordinal.nullable().default(null) });
 
@@ -144,7 +145,8 @@ export const revisionOnly = z.object({ revision: z.number().int() });
 export const zoneEditLine = z.object({ sequence: z.number().int(), operation: z.unknown(), reason: z.string(), undone: z.boolean(), author: z.string().nullable(), at: z.string() });
 export type ZoneEditLine = z.infer<typeof zoneEditLine>;
 
-export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int() });
+/** `replaces`: the version that was in force when the effects were read, null for none; left out, whatever is in force is replaced. */
+export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int(), replaces: z.number().int().nullable().optional() });
 
 /** What publishing would touch; a zone that only gets another number is in `renumbered`, and nothing of it counts as moved. */
 export const publishEffects = z.object({
@@ -155,7 +157,7 @@ export const publishEffects = z.object({
   renumbered: z.array(z.object({ from: zoneNumber, to: zoneNumber })),
   openRounds: z.array(z.object({ id, onDate: z.string(), people: z.array(z.string()) })),
   plans: z.array(z.object({ id, name: z.string(), isDraft: z.boolean(), vines: z.number().int(), vinesMoved: z.number().int() })),
-  lots: z.array(z.object({ id, name: z.string(), vinesMoved: z.number().int() })),
+  lots: z.array(z.object({ id, name: z.string(), isPicked: z.boolean(), vinesMoved: z.number().int() })),
   underFloor: z.array(z.object({ zone: zoneNumber, sampled: z.number().int(), floor: z.number().int() })),
 });
 export type PublishEffects = z.infer<typeof publishEffects>;

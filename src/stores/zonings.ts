@@ -15,12 +15,12 @@ export const useZoningsStore = defineStore('zonings', () => {
   const view = (estateId: string, zoningId: string, zones: number | null = null) => http.get<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { query: { zones } });
   const run = (estateId: string, blockId: string, options: z.input<typeof newZoning>) => http.post<{ zoningId: string; jobId: string }>(`${base(estateId)}/blocks/${blockId}/zonings`, options);
   const stop = (estateId: string, jobId: string) => http.delete(`${base(estateId)}/jobs/${jobId}`);
-  const keep = (estateId: string, zoningId: string, chosenZones: number) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { chosenZones });
+  const keep = (estateId: string, zoningId: string, kept: { chosenZones: number; revision: number }) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, kept);
   const edits = async (estateId: string, zoningId: string) => (await http.get<Listed<ZoneEditLine>>(`${base(estateId)}/zonings/${zoningId}/edits`)).items;
   const edit = (estateId: string, zoningId: string, made: { operation: ZoneOperation; reason: string; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/edits`, made);
   const step = (estateId: string, zoningId: string, made: { step: 'undo' | 'redo'; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/${made.step}`, { revision: made.revision });
   const effects = (estateId: string, zoningId: string) => http.get<PublishEffects>(`${base(estateId)}/zonings/${zoningId}/effects`);
-  const publish = (estateId: string, zoningId: string, made: { reason: string; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/publish`, made);
+  const publish = (estateId: string, zoningId: string, made: { reason: string; revision: number; replaces?: number | null }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/publish`, made);
   const restore = (estateId: string, zoningId: string) => http.post<{ id: string }>(`${base(estateId)}/zonings/${zoningId}/restore`);
   const compare = (estateId: string, zoningId: string, { other, zones = null }: { other: string; zones?: number | null }) => http.get<ZoningComparison>(`${base(estateId)}/zonings/${zoningId}/compare`, { query: { with: other, zones } });
   const name = (estateId: string, zoningId: string, called: string) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { name: called });

@@ -444,6 +444,27 @@ describe('a draft', () => {
     expect((await view(zoningId)).zones[0]!.name).toBe('');
   });
 
+  it('is not begun anew by somebody who has not seen the edits made meanwhile', async () => {
+    const zoningId = await draft(2);
+    const { revision } = await view(zoningId);
+    await edit(zoningId, { kind: 'rename', zone: 1, name: 'Kept' });
+    const anew = (read: number) => agronomist.patch(`${base()}/zonings/${zoningId}`, { chosenZones: 3, revision: read });
+    const refused = await anew(revision);
+    expect([refused.status, refused.body.who]).toEqual([412, managerName]);
+    expect((await view(zoningId)).zones[0]!.name).toBe('Kept');
+    expect((await anew(revision + 1)).body).toMatchObject({ chosenZones: 3, revision: revision + 2 });
+  });
+
+  it('that was published meanwhile is told to whoever still edits it', async () => {
+    const zoningId = await draft(2);
+    const { revision } = await view(zoningId);
+    expect((await manager.post(`${base()}/zonings/${zoningId}/publish`, { revision })).status).toBe(200);
+    const seen = (await agronomist.post(`${base()}/zonings/${zoningId}/presence`)).body as ZoningPresence;
+    expect(seen).toMatchObject({ revision: revision + 1, changedBy: managerName });
+    const late = await agronomist.post(`${base()}/zonings/${zoningId}/edits`, { operation: { kind: 'merge', zones: [1], into: 2 }, revision });
+    expect([late.status, late.body.who]).toEqual([412, managerName]);
+  });
+
   it('is taken by one of two people who edit in the same moment', async () => {
     const zoningId = await draft(2);
     const { revision } = await view(zoningId);
@@ -534,6 +555,27 @@ describe('publishing', () => {
     expect(await Zoning.query().where({ blockId: plot.blockId, state: 'live' }).resultSize()).toBe(1);
   });
 
+  it('replaces no zones but those whose replacing was shown', async () => {
+    const { number } = await Zoning.query().findOne({ blockId: plot.blockId, state: 'live' }).throwIfNotFound();
+    const [mine, theirs] = [await draft(2), await draft(3)];
+    const put = async (zoningId: string, replaces?: number | null) => manager.post(`${base()}/zonings/${zoningId}/publish`, { revision: (await view(zoningId)).revision, replaces });
+    expect((await manager.get(`${base()}/zonings/${mine}/effects`)).body.replaces).toBe(number);
+    expect((await put(theirs, number)).status).toBe(200);
+    const refused = await put(mine, number);
+    expect([refused.status, refused.body.detail]).toEqual([412, expect.stringContaining(`${managerName} put version ${number + 2}`)]);
+    expect((await put(mine, null)).status).toBe(412);
+    expect((await view(mine)).state).toBe('draft');
+    expect((await put(mine, number + 2)).status).toBe(200);
+    expect((await view(theirs)).state).toBe('retired');
+  });
+
+  it('puts two drafts that are published in one moment in force one after the other', async () => {
+    const both = [await draft(2), await draft(3)];
+    const answers = await Promise.all(both.map((zoningId) => publish(zoningId)));
+    expect(answers.map(({ status }) => status)).toEqual([200, 200]);
+    expect(await Zoning.query().where({ blockId: plot.blockId, state: 'live' }).resultSize()).toBe(1);
+  });
+
   it('keeps names and colours of retired zones when they are taken up as a new draft', async () => {
     const made = await manager.post(`${base()}/zonings/${first}/restore`);
     expect(made.status).toBe(201);
@@ -543,6 +585,15 @@ describe('publishing', () => {
     expect(copy.zones.map((zone) => zone.name)).toEqual(['Crête', '']);
     expect(copy.zones[1]!.colour).toBe('#336699');
     expect(old.state).toBe('retired');
+    // What the old version came to is where the draft begins: nobody did it here, and nothing of it can be taken back.
+    const begun = () => manager.get(`${base()}/zonings/${copy.id}/edits`);
+    expect((await begun()).body.items).toEqual([]);
+    const refused = await manager.post(`${base()}/zonings/${copy.id}/undo`, { revision: copy.revision });
+    expect([refused.status, refused.body.code]).toEqual([409, 'nothingToStep']);
+    await edit(copy.id, { kind: 'rename', zone: 1, name: null });
+    const back = (await manager.post(`${base()}/zonings/${copy.id}/undo`, { revision: copy.revision + 1 })).body as ZoningView;
+    expect(back.zones.map(({ name, colour }) => [name, colour])).toEqual([['Crête', null], ['', '#336699']]);
+    expect((await begun()).body.items).toHaveLength(1);
     const edited = await edit(copy.id, { kind: 'rename', zone: 2, name: 'Fond' });
     expect(edited.zones.map((zone) => [zone.name, zone.doubtfulShare])).toEqual([['Crête', old.zones[0]!.doubtfulShare], ['Fond', old.zones[1]!.doubtfulShare]]);
     // Ground that was given by hand is where the next draft begins, and it says so; a number kept anew is as computed.
@@ -552,6 +603,8 @@ describe('publishing', () => {
     expect([again.zones.length, again.beginsByHand, again.takenUpFrom]).toEqual([1, true, copy.number]);
     const anew = (await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body as ZoningView;
     expect([anew.zones.length, anew.beginsByHand, anew.takenUpFrom]).toEqual([3, false, null]);
+    expect(anew.zones.map(({ name, colour }) => [name, colour])).toEqual(anew.zones.map(() => ['', null]));
+    expect((await edit(copy.id, { kind: 'rename', zone: 3, name: 'Haut' })).zones.map(({ name }) => name)).toEqual(['', '', 'Haut']);
   });
 
   it('takes zones of an earlier season up in the season that it is', async () => {

@@ -101,6 +101,11 @@ describe('number field', () => {
     expect(textOf(wrapper.find('[role=alert]').element)).toBe('At most 40.0.');
     expect(wrapper.find('input').attributes('aria-invalid')).toBe('true');
     expect(last()).toBeUndefined();
+    // No form is sent with the number that was taken before, and one that is set from elsewhere stands unrefused.
+    expect((wrapper.find('input').element as HTMLInputElement).validationMessage).toBe('At most 40.0.');
+    await wrapper.setProps({ modelValue: 12 });
+    expect([(wrapper.find('input').element as HTMLInputElement).value, (wrapper.find('input').element as HTMLInputElement).validity.valid]).toEqual(['12.0', true]);
+    expect(wrapper.find('[role=alert]').exists()).toBe(false);
   });
 
   it('only asks about an unusual value and takes it', async () => {

@@ -119,6 +119,9 @@ describe('row strip', () => {
     expect(wrapper.text()).toContain('Rows 1 to 2');
     await press('2');
     expect(wrapper.emitted('give')).toEqual([[2]]);
+    // A slip of the finger begins no zone.
+    await press('6');
+    expect(wrapper.emitted('give')).toHaveLength(1);
   });
 
   it('Space again says from where, and once more to where, as a tap does', async () => {

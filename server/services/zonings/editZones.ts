@@ -16,9 +16,10 @@ import { seasonOn } from './seasonOn.ts';
 import { drawZones, storeZones } from './storeZones.ts';
 import { say } from '../../sentences/say.ts';
 
-/** Keeps the candidate with so many zones as a draft that can be edited. Keeping another number later starts the draft anew. */
-export async function keepAsDraft(access: Access, zoningId: string, zoneCount: number): Promise<void> {
+/** Keeps the candidate with so many zones as a draft that can be edited. Keeping another number later starts the draft anew; with a `revision` only where nobody changed it since. */
+export async function keepAsDraft(access: Access, zoningId: string, zoneCount: number, revision?: number): Promise<void> {
   const zoning = await findZoning(access, zoningId);
+  await requireRevision(access, zoning, revision ?? zoning.revision);
   if (zoning.state === 'running' || zoning.state === 'failed') throw new Clash('notReady', say('zoningNotReady'));
   if (zoning.state === 'live' || zoning.state === 'retired') throw new Clash('published', say('zonesPublished'));
   const candidate = await ZoningCandidate.query().findOne({ estateId: access.estateId, zoningId, zoneCount }).throwIfNotFound();
@@ -30,7 +31,7 @@ export async function keepAsDraft(access: Access, zoningId: string, zoneCount: n
   await Zoning.transaction(async (trx) => {
     const locked = await lockZoning(trx, access, zoningId, zoning.revision);
     await ZoneEditRecord.query(trx).where({ estateId: access.estateId, zoningId }).delete();
-    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'draft', chosenZones: zoneCount, baseLabels: candidate.labels });
+    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'draft', chosenZones: zoneCount, baseLabels: candidate.labels, baseZones: [] });
     await storeZones(trx, locked, { ground, map, drawn });
     await writeAudit(trx, access, { action: 'zones.keep', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, after: { zones: zoneCount } });
   });
@@ -76,7 +77,7 @@ export async function listEdits(access: Access, zoningId: string): Promise<ZoneE
   return rows.map((row) => ({ sequence: row.sequence, operation: (row.operation as StoredEdit).asked, reason: row.reason, undone: row.undone, author: people.find((person) => person.id === row.authorId)?.name ?? null, at: row.at.toISOString() }));
 }
 
-/** Takes a zoning up again as a new draft of the season that it is; the old one stays as it is. */
+/** Takes a zoning up again as a new draft of the season that it is, with its names and colours and no edit to take back; the old one stays as it is. */
 export async function restoreAsDraft(access: Access, zoningId: string, today: string): Promise<{ id: string }> {
   const old = await findZoning(access, zoningId);
   if (old.labels === null || old.baseLabels === null) throw new Unusable('noZones', say('noZonesToTakeUp'));
@@ -90,20 +91,13 @@ export async function restoreAsDraft(access: Access, zoningId: string, today: st
     await Block.query(trx).findOne({ estateId: access.estateId, id: old.blockId }).forUpdate();
     const [last] = (await Zoning.query(trx).where({ estateId: access.estateId, blockId: old.blockId }).max('number as number')) as unknown as { number: number }[];
     const { blockId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
-    const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId: season.id, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), createdBy: access.personId });
+    const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId: season.id, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), baseZones: [...map.zones], createdBy: access.personId });
     const candidates = await ZoningCandidate.query(trx).where({ estateId: access.estateId, zoningId: old.id });
     if (candidates.length > 0) await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
-    const known = describingEdits(map);
-    if (known.length > 0) await ZoneEditRecord.query(trx).insert(known.map((edit, index) => ({ estateId: access.estateId, zoningId: copy.id, sequence: index + 1, operation: { edit, asked: edit }, reason: '', authorId: access.personId })));
     await storeZones(trx, copy, { ground, map, drawn });
     await writeAudit(trx, access, { action: 'zones.restore', subjectType: 'zoning', subjectId: copy.id, subjectName: ground.block.name, after: { from: old.number } });
     return { id: copy.id };
   });
-}
-
-/** Names and colours of zones as the edits that gave them. */
-function describingEdits(map: ZoneMap): ZoneEdit[] {
-  return map.zones.flatMap(({ number: zone, name, colour }): ZoneEdit[] => [...(name === null ? [] : [{ kind: 'rename' as const, zone, name }]), ...(colour === null ? [] : [{ kind: 'recolour' as const, zone, colour }])]);
 }
 
 interface StoredEdit {
@@ -117,7 +111,7 @@ async function mapOf(zoning: Zoning, ground: BlockVines): Promise<ZoneMap> {
 
 function replay(zoning: Zoning, ground: BlockVines, edits: readonly ZoneEditRecord[]): ZoneMap {
   const grid = gridOf(ground);
-  return replayEdits(grid, zoneMapOf(grid, decodeLabels(zoning.baseLabels!)), edits.filter((record) => !record.undone).map((record) => (record.operation as StoredEdit).edit));
+  return replayEdits(grid, zoneMapOf(grid, decodeLabels(zoning.baseLabels!), zoning.baseZones), edits.filter((record) => !record.undone).map((record) => (record.operation as StoredEdit).edit));
 }
 
 async function findZoning(access: Access, zoningId: string): Promise<Zoning> {
@@ -126,8 +120,9 @@ async function findZoning(access: Access, zoningId: string): Promise<Zoning> {
 
 async function openDraft(access: Access, zoningId: string, revision: number): Promise<{ zoning: Zoning; ground: BlockVines; edits: ZoneEditRecord[] }> {
   const zoning = await findZoning(access, zoningId);
-  requireDraft(zoning);
+  // A draft that somebody published meanwhile was changed by them first of all.
   await requireRevision(access, zoning, revision);
+  requireDraft(zoning);
   const ground = await loadBlockVines(access.estateId, zoning.blockId);
   requireSameOutline(zoning, ground);
   return { zoning, ground, edits: await ZoneEditRecord.query().where({ estateId: access.estateId, zoningId }).orderBy('sequence') };

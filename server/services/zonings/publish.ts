@@ -6,10 +6,11 @@ import { estateSettings } from '../../../shared/contracts/estate.ts';
 import { vineIndex } from '../../../shared/geo/vines.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import type { Access } from '../../access/access.ts';
-import { Clash } from '../../errors.ts';
+import { Clash, Stale } from '../../errors.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { zonedReadings } from '../../ground/zonedReadings.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
+import { Block } from '../../models/Block.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
@@ -46,18 +47,27 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
   };
 }
 
-/** Puts the draft in force for its season; the zones that were in force are kept as they were. */
-export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; now: Date }): Promise<void> {
+/** Puts the draft in force for its season; the zones that were in force are kept as they were. Whoever has the draft open to edit sees by its revision that it is one no more. */
+export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; replaces?: number | null | undefined; now: Date }): Promise<void> {
   await Zoning.transaction(async (trx) => {
     const zoning = await lockZoning(trx, access, zoningId, input.revision);
     if (zoning.state !== 'draft') throw new Clash('notDraft', say('onlyDraftPublished'));
+    // Two drafts of a block that are published in one moment go one after the other.
+    await Block.query(trx).findOne({ estateId: access.estateId, id: zoning.blockId }).forUpdate();
     const ground = await loadBlockVines(access.estateId, zoning.blockId, trx);
     requireSameOutline(zoning, ground);
-    const [replaced] = await Zoning.query(trx).where({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' }).forUpdate().select('id', 'number');
+    const [replaced] = await Zoning.query(trx).where({ estateId: access.estateId, blockId: zoning.blockId, seasonId: zoning.seasonId, state: 'live' }).forUpdate().select('id', 'number', 'publishedBy');
+    if (input.replaces !== undefined && input.replaces !== (replaced?.number ?? null)) throw await inForceMeanwhile(replaced);
     if (replaced) await Zoning.query(trx).where({ estateId: access.estateId, id: replaced.id }).patch({ state: 'retired' });
-    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'live', publishedAt: input.now, publishedBy: access.personId });
+    await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'live', publishedAt: input.now, publishedBy: access.personId, revision: zoning.revision + 1 });
     await writeAudit(trx, access, { action: 'zones.publish', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, before: { live: replaced?.number ?? null }, after: { live: zoning.number }, reason: input.reason || null });
   });
+}
+
+/** Other zones came into force than those whose replacing was shown: they would be put out of force unseen. */
+async function inForceMeanwhile(live: Zoning | undefined): Promise<Stale> {
+  const who = live?.publishedBy ? (await Person.query().findById(live.publishedBy))?.name : undefined;
+  return new Stale('zonesChanged', live && who !== undefined ? say('zonesInForceChanged', { who, number: live.number }) : say('zonesChangedBySomebody'));
 }
 
 /** Two zonings of one block vine by vine; `zones`: the number that the first is looked at with. */
@@ -112,7 +122,7 @@ async function peopleOf(access: Access, rounds: Round[]): Promise<PublishEffects
   }));
 }
 
-/** Lots keep their vines whatever the zones are called; what changes is which zone those vines count for. */
+/** The season's lots keep their vines whatever the zones are called; what changes is which zone those vines count for. A picked lot is in the cellar. */
 async function lotsTouched(access: Access, { zoning, ground, isMoved }: { zoning: Zoning; ground: BlockVines; isMoved: (vine: number) => boolean }): Promise<PublishEffects['lots']> {
   const runs = (await LotRowRun.query()
     .where('lot_row_runs.estateId', access.estateId)
@@ -120,10 +130,11 @@ async function lotsTouched(access: Access, { zoning, ground, isMoved }: { zoning
     .join(`${Lot.tableName} as lot`, 'lot.id', 'part.lotId')
     .join('scenarios as scenario', 'scenario.id', 'lot.scenarioId')
     .where('scenario.isLive', true)
+    .where('lot.seasonId', zoning.seasonId)
     .where('part.blockId', zoning.blockId)
-    .select('lot.id as lotId', 'lot.name as lotName', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as { lotId: string; lotName: string; rowId: string; from: number; to: number }[];
+    .select('lot.id as lotId', 'lot.name as lotName', 'lot.state as lotState', 'lot_row_runs.rowId', LotRowRun.raw('lower(lot_row_runs.vines) as "from"'), LotRowRun.raw('upper(lot_row_runs.vines) - 1 as "to"'))) as unknown as { lotId: string; lotName: string; lotState: Lot['state']; rowId: string; from: number; to: number }[];
   return [...groupBy(runs, (run) => run.lotId).values()]
-    .map((own) => ({ id: own[0]!.lotId, name: own[0]!.lotName, vinesMoved: own.reduce((sum, run) => sum + movedInRun(ground, run, isMoved), 0) }))
+    .map((own) => ({ id: own[0]!.lotId, name: own[0]!.lotName, isPicked: own[0]!.lotState === 'picked', vinesMoved: own.reduce((sum, run) => sum + movedInRun(ground, run, isMoved), 0) }))
     .filter((lot) => lot.vinesMoved > 0);
 }
 

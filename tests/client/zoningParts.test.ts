@@ -25,6 +25,22 @@ describe('what to zone from', () => {
     form.unmount();
   });
 
+  it('starts from an earlier run without a layer that was refused since', async () => {
+    const before = { layers: ['Flight 2026', 'Conductivity'].map((layerId) => ({ layerId, weight: null })), withBlocks: [] } as unknown as ZoningRequestOptions;
+    const form = await mountWithTexts(ZoningForm, { props: { layers: layers.map((one) => (one.id === 'Conductivity' ? { ...one, readiness: 'blocked' as const } : one)), before } });
+    await form.find('form').trigger('submit');
+    expect((form.emitted('run')![0] as [ZoningRequestOptions])[0].layers.map(({ layerId }) => layerId)).toEqual(['Flight 2026']);
+    form.unmount();
+  });
+
+  it('says of a block without layers that there are none', async () => {
+    const form = await mountWithTexts(ZoningForm, { props: { layers: [] }, slots: { none: () => 'the way to them' } });
+    expect(form.text()).toContain('No layer lies on this block yet.');
+    expect(form.text()).toContain('the way to them');
+    expect(form.text()).not.toContain('Set weights myself');
+    form.unmount();
+  });
+
   it('tells of two layers of one kind which year each is of', async () => {
     const form = await mountWithTexts(ZoningForm, { props: { layers } });
     for (const year of ['2026', '2025']) expect(textOf(form.findAll('li').find((line) => line.text().includes(`Flight ${year}`))!.element)).toMatch(new RegExp(`20 June? ${year}`));

@@ -13,10 +13,11 @@ setWorkerUrl(workerUrl);
 export const mapKey: InjectionKey<ShallowRef<MlMap | null>> = Symbol('map');
 
 type Bounds = [number, number, number, number];
-const padding = 56;
+/** Left free around what is shown whole. */
+export const mapMargin = 56;
 
 /** Makes the map in the given element, keeps its colours in step with the theme, and takes it down again. */
-export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null }) {
+export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null; /** Left free at the foot. */ foot: () => number }) {
   const map = shallowRef<MlMap | null>(null);
   const failed = shallowRef(false);
   const { theme } = useTheme();
@@ -33,7 +34,7 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
       made = new MlMap({
         container: container.value!,
         style: mapStyle(ink.value),
-        ...(bounds ? { bounds, fitBoundsOptions: { padding } } : { center: [0, 30], zoom: 1 }),
+        ...(bounds ? { bounds, fitBoundsOptions: { padding: mapMargin } } : { center: [0, 30], zoom: 1 }),
         attributionControl: false, dragRotate: false, pitchWithRotate: false, touchPitch: false, maxZoom: 22, fadeDuration: 0, locale: { 'Map.Title': options.label() },
       });
     } catch {
@@ -54,13 +55,16 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
     const letGo = (event: object) => 'isOurs' in event || (shown = null);
     ready.on('dragstart', letGo);
     ready.on('zoomstart', letGo);
-    ready.on('resize', () => shown && showBounds(shown, 0));
+    ready.on('resize', showAgain);
   }
 
   function showBounds(bounds: Bounds, duration: number): void {
     shown = bounds;
-    map.value?.fitBounds(bounds, { padding, duration }, ours);
+    map.value?.fitBounds(bounds, { padding: { top: mapMargin, left: mapMargin, right: mapMargin, bottom: options.foot() }, duration }, ours);
   }
+
+  /** Shows it whole again when its room has changed, unless the person looks elsewhere by now. */
+  const showAgain = () => shown && showBounds(shown, 0);
 
   watch(theme, () => map.value && recolour(map.value, ink.value));
   // After the parts that draw on it: the pen takes its own layers off first.
@@ -68,7 +72,7 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
     map.value = null;
     made?.remove();
   });
-  return { map, ink, failed, showBounds };
+  return { map, ink, failed, showBounds, showAgain };
 }
 
 function recolour(map: MlMap, ink: MapInk): void {

@@ -96,7 +96,7 @@ export const pt: Record<SentenceKey, string> = {
   correctedAlready: 'O talão {ticketNo} já foi corrigido. Corrija a sua correção.',
   ticketTwice: 'O talão {ticketNo} já está registado. Se estava errado, corrija-o.',
   noBlock: 'A repartição nomeia uma parcela que não está nesta quinta.',
-  notOfLot: 'A repartição nomeia {part}, mas nenhuma videira do lote «{lot}» está aí: esse peso não contaria para nenhuma zona. Neste lote hoje: {zones}. Escolha uma destas, deixe a carga inteira, ou escolha o lote de onde veio.',
+  notOfLot: 'A repartição nomeia {part}, mas nenhuma cepa do lote «{lot}» está aí: esse peso não contaria para nenhuma zona. Neste lote hoje: {zones}. Escolha uma destas, deixe a carga inteira, ou escolha o lote de onde veio.',
   lotHasTickets: 'O lote «{lot}» tem talões de pesagem, corrigidos depois. Os talões guardam-se, por isso não pode ser apagado: dê-lhe outras zonas ou outro nome.',
   notOfSeason: 'O dia {day} fica fora da campanha {season}, cuja uva entra de {from} a {to} o mais tardar. Verifique o ano.',
   tableQuestions: 'Responda primeiro ao que se pergunta sobre a tabela; nada foi guardado.',

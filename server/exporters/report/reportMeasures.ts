@@ -6,5 +6,5 @@ export const reportMeasures: Record<ReportLanguage, Readonly<Record<string, stri
   es: { brix: '°Brix', ph: 'pH', ta: 'acidez', clusterWeight: 'peso del racimo', clusterCount: 'racimos por cepa' },
   fr: { brix: '°Brix', ph: 'pH', ta: 'acidité', clusterWeight: 'poids des grappes', clusterCount: 'grappes par cep' },
   it: { brix: '°Brix', ph: 'pH', ta: 'acidità', clusterWeight: 'peso del grappolo', clusterCount: 'grappoli per ceppo' },
-  pt: { brix: '°Brix', ph: 'pH', ta: 'acidez', clusterWeight: 'peso do cacho', clusterCount: 'cachos por videira' },
+  pt: { brix: '°Brix', ph: 'pH', ta: 'acidez', clusterWeight: 'peso do cacho', clusterCount: 'cachos por cepa' },
 };

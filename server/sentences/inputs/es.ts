@@ -32,7 +32,7 @@ export const es: Record<string, string> = {
   'Give the name.': 'Indique el nombre.',
   'Give your name.': 'Indique su nombre.',
   'Litres must be above 0.': 'Los litros deben ser más de 0.',
-  'A zone stands there twice; name each once, with all its rows.': 'Una zona está dos veces; nombre cada una una vez, con todas sus filas.',
+  'A zone stands there twice; name each once, with all its rows.': 'Una zona está dos veces; nombre cada una una vez, con todas sus hileras.',
   'The least fill must be below the fill allowed.': 'El llenado mínimo debe ser menor que el llenado admitido.',
   'Name the laboratory, so that its next file is read the same way.': 'Indique el laboratorio, para que su próximo archivo se lea igual.',
   'Name the product.': 'Indique el producto.',

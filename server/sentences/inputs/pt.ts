@@ -32,7 +32,7 @@ export const pt: Record<string, string> = {
   'Give the name.': 'Indique o nome.',
   'Give your name.': 'Indique o seu nome.',
   'Litres must be above 0.': 'Os litros têm de ser mais de 0.',
-  'A zone stands there twice; name each once, with all its rows.': 'Uma zona está duas vezes; nomeie cada uma uma só vez, com todas as suas linhas.',
+  'A zone stands there twice; name each once, with all its rows.': 'Uma zona está duas vezes; nomeie cada uma uma só vez, com todos os seus bardos.',
   'The least fill must be below the fill allowed.': 'O enchimento mínimo tem de ser menor do que o admitido.',
   'Name the laboratory, so that its next file is read the same way.': 'Indique o laboratório, para o próximo ficheiro ser lido da mesma forma.',
   'Name the product.': 'Indique o produto.',

@@ -55,7 +55,7 @@ export const it = {
     'zone-vanished': 'Sono state fatte {wanted} zone, ne sono rimaste {left} dopo l’unione delle piccole macchie alle vicine.',
     'zone-elsewhere': 'Questo appezzamento ha {left} delle {wanted} zone; le altre sono negli appezzamenti zonati con esso.',
     'cells-filled': 'Sul {share} dell’appezzamento manca uno strato ed è stato giudicato dagli altri; conta come dubbio.',
-    'rows-against-ground': 'Con confini lungo i filari il {share} delle viti sta in un’altra zona che il suo terreno: i filari attraversano ciò che gli strati mostrano.',
+    'rows-against-ground': 'Con confini lungo i filari il {share} dei ceppi sta in un’altra zona che il suo terreno: i filari attraversano ciò che gli strati mostrano.',
   },
   derived: { slope: 'pendenza', northness: 'esposizione nord', eastness: 'esposizione est' },
   tried: {

@@ -29,6 +29,8 @@ export interface ImportedRows extends BlockRows {
 
 /** A gap between neighbouring rows off the usual one by more than this is reported (judgement). */
 const GAP_TOLERANCE = 0.3;
+/** Files round positions, mostly to millimetres: a stretch of whole vines must not lose its last one to that (judgement). */
+const ROUNDED_OFF_M = 0.02;
 
 /**
  * Rows from surveyed lines. The bearing is the length-weighted mean direction (angles doubled, since a line has no
@@ -125,7 +127,7 @@ function groupS(group: readonly PlacedLine[]): number {
 
 function rowOfGroup(group: readonly PlacedLine[], ordinal: number, facts: ImportFacts) {
   let vineCount = 0;
-  const spacing = { spacingM: facts.vineSpacingM, endOffsetM: facts.endOffsetM ?? facts.vineSpacingM / 2, align: facts.vineAlign ?? 'centred' };
+  const spacing = { spacingM: facts.vineSpacingM, endOffsetM: facts.endOffsetM ?? facts.vineSpacingM / 2, align: facts.vineAlign ?? 'centred', slackM: ROUNDED_OFF_M };
   const pieces = group.map(({ path, lengthM }): PieceXY => {
     const spread = vinesOnPiece(lengthM, spacing);
     const firstVine = vineCount + 1;

@@ -12,12 +12,14 @@ export interface VineSpacing {
   /** Least distance from a piece's end to its first vine. */
   readonly endOffsetM: number;
   readonly align: VineAlign;
+  /** How much shorter the piece may be than its vines need: what surveying and rounding take off. */
+  readonly slackM?: number;
 }
 
 /** As many vines as fit with `endOffsetM` kept at both ends; the remainder is shared by both ends unless aligned to one. */
 export function vinesOnPiece(lengthM: number, spacing: VineSpacing): VineSpread {
-  const { spacingM, endOffsetM, align } = spacing;
-  const room = lengthM - 2 * endOffsetM;
+  const { spacingM, endOffsetM, align, slackM = 0 } = spacing;
+  const room = lengthM + slackM - 2 * endOffsetM;
   const vineCount = room < 0 ? 0 : Math.floor(room / spacingM + 1e-6) + 1;
   const span = (vineCount - 1) * spacingM;
   const firstVineM = {

@@ -4,7 +4,7 @@ import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts
 import { importRows, type RowLine } from '../../shared/geo/importedRows.ts';
 import { buildRows } from '../../shared/geo/rows.ts';
 import { fromUtm } from '../../shared/geo/utm.ts';
-import { vineXY } from '../../shared/geo/vines.ts';
+import { pointOnPiece, vineXY } from '../../shared/geo/vines.ts';
 
 const closed = (...corners: LonLat[]): MultiPolygonLonLat => [[[...corners, corners[0]!]]];
 const north = closed([-1.8012, 42.5101], [-1.7985, 42.5104], [-1.7981, 42.5083], [-1.8009, 42.508]);
@@ -70,6 +70,21 @@ describe('rows from surveyed lines', () => {
     const [x, y] = vineXY(imported.rows[40]!, 17)!;
     const [builtX, builtY] = vineXY(built.rows[40]!, 17)!;
     expect(Math.hypot(x - builtX, y - builtY)).toBeLessThan(1e-3);
+  });
+
+  it('a row cut where zones change, and rounded as files round, keeps every vine in its place', () => {
+    const rounded = ([lon, lat]: LonLat): LonLat => [Math.round(lon * 1e8) / 1e8, Math.round(lat * 1e8) / 1e8];
+    const cut = built.rows.flatMap((row) => row.pieces.flatMap((piece): RowLine[] => {
+      const at = Array.from({ length: Math.max(1, Math.floor(piece.vineCount / 7)) }, (_, stretch) => piece.firstVineM + (7 * stretch - 0.5) * piece.stepM);
+      const ends = [...at, piece.firstVineM + (piece.vineCount - 0.5) * piece.stepM].map((metres) => rounded(fromUtm(pointOnPiece(piece, metres), built.epsg)));
+      return ends.slice(1).map((end, i) => ({ line: [ends[i]!, end], label: `R${row.ordinal}` }));
+    }));
+    expect(cut.length).toBeGreaterThan(1000);
+    const imported = importRows(cut, { vineSpacingM: 1.8, epsg: built.epsg });
+    expect(imported.rows.map((row) => row.vineCount)).toEqual(built.rows.map((row) => row.vineCount));
+    const [x, y] = vineXY(imported.rows[40]!, 17)!;
+    const [builtX, builtY] = vineXY(built.rows[40]!, 17)!;
+    expect(Math.hypot(x - builtX, y - builtY)).toBeLessThan(0.01);
   });
 
   it('a missing row shows as an uneven gap', () => {

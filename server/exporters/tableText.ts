@@ -6,6 +6,9 @@ export type TableCell = string | number | null | { readonly value: number; reado
 /** Begins like a formula, and is no figure: a minus before a longitude is a sign. */
 const runsAsFormula = /^(?![+-]?\d+(?:[.,]\d+)?$)[=+\-@\t\r]/;
 
+/** Where a cell would begin in a spreadsheet that is set to another list separator (OWASP, CSV Injection). */
+const runsElsewhere = /([;,\t])(?=[=+\-@])/g;
+
 /**
  * A table that opens in a spreadsheet set to the reader's language: comma and decimal point in English, semicolon and
  * decimal comma in the other four (common practice: the list separator that these countries' systems are set to).
@@ -15,7 +18,7 @@ export function tableText(fields: readonly string[], lines: readonly Readonly<Re
   const hasPoint = language === 'en';
   const written = (cell: TableCell | undefined): string => {
     if (cell === null || cell === undefined) return '';
-    if (typeof cell === 'string') return cell;
+    if (typeof cell === 'string') return cell.replace(runsElsewhere, "$1'");
     const text = typeof cell === 'number' ? String(cell) : cell.value.toFixed(cell.decimals);
     return hasPoint ? text : text.replace('.', ',');
   };

@@ -265,13 +265,17 @@ describe('a plan', () => {
     const [head, first] = french.text.split('\r\n');
     expect(head).toBe('\uFEFFwalk_order;block;zone;zone_name;row;vine;reserve_row;reserve_vine;measures;draw_order;longitude;latitude;target_id');
     expect(first).toMatch(/;-?\d+,\d{7};-?\d+,\d{7};/);
-    const gpx = await manager.get(`${base()}/plans/${made.id}/export?format=gpx`).buffer(true).parse((response, done) => {
+    const textOf = (response: NodeJS.ReadableStream, done: (error: Error | null, text: string) => void) => {
       let text = '';
       response.on('data', (part: Buffer) => (text += part.toString('utf8')));
       response.on('end', () => done(null, text));
-    });
+    };
+    const gpx = await manager.get(`${base()}/plans/${made.id}/export?format=gpx`).buffer(true).parse(textOf as never);
     expect((gpx.body as string).match(/<wpt /g)).toHaveLength(78);
     expect(gpx.body).toContain('=Plan &amp; co');
+    expect(gpx.body).toMatch(/<desc>Zone 1, Strip 1; reserve R\d+ V\d+<\/desc>/);
+    const spoken = await manager.get(`${base()}/plans/${made.id}/export?format=gpx`).set('accept-language', 'it').buffer(true).parse(textOf as never);
+    expect(spoken.body).toMatch(/<desc>Zona 1, Strip 1; riserva R\d+ V\d+<\/desc>/);
     expect((await manager.get(`${base()}/plans/${made.id}/export?format=docx`)).status).toBe(422);
   });
 

@@ -137,6 +137,19 @@ describe('formats of zones', () => {
     expect(await AuditEntry.query().where({ action: 'zones.export', subjectId: zoningId }).orderBy('id', 'desc').first()).toMatchObject({ after: { format: 'geojson' }, subjectName: 'Côte à l’Éperon' });
   });
 
+  it('are taken under names that end in the middle of an emoji, and those of rows can be told from those of zones', async () => {
+    const { name } = await Block.query().findById(plot.blockId).throwIfNotFound();
+    await Block.query().findById(plot.blockId).patch({ name: `a${'🍇'.repeat(39)}` });
+    await manager.patch(`${base}/zonings/${zoningId}`, { name: `b${'🍷'.repeat(39)}` });
+    const [zones, rows] = [await take('geojson'), await take('rowsGeojson')];
+    await manager.patch(`${base}/zonings/${zoningId}`, { name: 'Été 2026' });
+    await Block.query().findById(plot.blockId).patch({ name });
+    expect([zones.status, rows.status]).toEqual([200, 200]);
+    const named = [zones, rows].map(({ headers }) => /filename\*=UTF-8''(.+)$/.exec(headers['content-disposition'] as string)![1]!).map(decodeURIComponent);
+    expect(named[0]).toMatch(/^a(🍇)+ b(🍷)+\.geojson$/u);
+    expect(named[1]).toMatch(/^a(🍇)+ b(🍷)+ rows\.geojson$/u);
+  });
+
   it('refuse what they do not know', async () => {
     expect((await manager.get(`${base}/zonings/${zoningId}/export`)).status).toBe(422);
     const answer = await manager.get(`${base}/zonings/${zoningId}/export?format=dwg`);

@@ -1,5 +1,6 @@
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { seasonLetter as letterPdf } from '../../exporters/report/seasonLetter.ts';
 import { seasonLetterTexts, type LetterLanguage } from '../../exporters/report/seasonLetterTexts.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -19,5 +20,5 @@ export async function seasonLetter(access: Access, blockId: string, options: { s
     size: options.size, units: person.units, now: options.now, timeZone: estate.timeZone, estateName: estate.name, seasonName: review.seasonName,
     block, zones, errorParts: block.errorParts,
   });
-  return { name: `${block.blockName} ${review.seasonName}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'), body };
+  return { name: fileName([block.blockName, review.seasonName], 'pdf'), body };
 }

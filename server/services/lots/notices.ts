@@ -6,6 +6,7 @@ import type { NewNotice, NoticeBody, NoticeState, NoticeView } from '../../../sh
 import type { Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { noticeSheet } from '../../exporters/noticeSheet.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { queueMail } from '../../mail/outbox.ts';
 import { endOfEstateDay, estateDay } from '../../ground/estateDay.ts';
 import { dayIn } from '../../../shared/season/dayIn.ts';
@@ -179,7 +180,7 @@ export async function printNotice(access: Access, noticeId: string, options: { p
   const text = noticeText(seesLots ? body : withoutTonnes(body), { language: person.language, replacesNumber: notice.replacesNumber, differences: seesLots ? differences : withoutTonnesDifferences(differences) });
   const title = fill(texts.title, { number: notice.number });
   return {
-    name: `${title}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'),
+    name: fileName([title], 'pdf'),
     body: await noticeSheet({
       title,
       estateName: estate.name,

@@ -4,6 +4,7 @@ import { geoJsonOf } from '../../exporters/features/geoJson.ts';
 import { geoPackageOf } from '../../exporters/features/geoPackage.ts';
 import { kmlOf } from '../../exporters/features/kml.ts';
 import { shapefileOf } from '../../exporters/features/shapefile.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { planFeatures } from '../../exporters/planFeatures.ts';
 import { planGpx } from '../../exporters/planGpx.ts';
 import { planTable } from '../../exporters/planTable.ts';
@@ -30,5 +31,5 @@ export const planFormats = {
 export async function exportPlan(access: Access, planId: string, { format, language }: { format: keyof typeof planFormats; language: string }): Promise<{ name: string; type: string; body: string | Buffer }> {
   const plan = await viewPlan(access, planId);
   const { type, extension, write }: PlanFormat = planFormats[format];
-  return { name: `${plan.blockName} ${plan.name}.${extension}`.replace(/[\\/:*?"<>|]+/g, '-'), type, body: await write(plan, language) };
+  return { name: fileName([plan.blockName, plan.name], extension), type, body: await write(plan, language) };
 }

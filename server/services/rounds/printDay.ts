@@ -2,6 +2,7 @@ import { estateSettings } from '../../../shared/contracts/estate.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { daySheet, type DayPart } from '../../exporters/daySheet.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
 import type { EntryRestriction } from '../../models/EntryRestriction.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -33,5 +34,5 @@ export async function printDay(access: Access, { onDate, paper, now }: { onDate:
     parts.push({ person: name, language: spoken, stops: stops.map((stop) => ({ ...stop, closed: closed.has(stop.roundId) ? closedWords(closed.get(stop.roundId)!, spoken, estate.timeZone) : null })) });
   }
   const body = await daySheet(parts, { paper, estateName: estate.name, onDate, meetingPoint, emergencyNumber, at: now });
-  return { name: `${estate.name} ${onDate}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'), body };
+  return { name: fileName([estate.name, onDate], 'pdf'), body };
 }

@@ -4,6 +4,7 @@ import type { FieldRound } from '../../../shared/contracts/rounds.ts';
 import { LABEL_CODES, labelCode } from '../../../shared/field/labelCode.ts';
 import type { Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { labelSheet, type LabelPaper, type PrintedLabel } from '../../exporters/labelSheet.ts';
 import { labelTexts, type LabelLanguage } from '../../exporters/labelTexts.ts';
 import { measureWords } from '../../exporters/measureWords.ts';
@@ -44,8 +45,9 @@ export async function printLabels(access: Access, roundId: string, options: { pa
   for (const id of ids) wanted.push(...(await wantedOf({ ...access, personId: id }, round, { per: options.per, language, now: options.now, person: people.find((one) => one.id === id)?.name ?? '' })));
   if (wanted.length === 0) throw new Unusable('noBags', say('noBags'));
   const codes = await codesFor(access, round, wanted);
-  const title = `${wanted[0]!.facts!.block} ${round.onDate}`;
-  return { name: fileName(`${title} labels`), body: await labelSheet(wanted.map(({ facts }, i) => ({ code: codes[i]!, facts })), { paper: options.paper, language, title }) };
+  const { block } = wanted[0]!.facts!;
+  const title = `${block} ${round.onDate}`;
+  return { name: fileName([block, round.onDate, 'labels'], 'pdf'), body: await labelSheet(wanted.map(({ facts }, i) => ({ code: codes[i]!, facts })), { paper: options.paper, language, title }) };
 }
 
 /** A roll of blank labels: each is bound to a vine or zone when its bag is closed. */
@@ -57,14 +59,12 @@ export async function printBlankLabels(access: Access, options: { count: number;
     await writeAudit(trx, access, { action: 'labels.print', subjectType: 'estate', subjectId: access.estateId, after: { blank: options.count } });
     return fresh;
   });
-  return { name: fileName('labels'), body: await labelSheet(codes.map((code) => ({ code, facts: null })), { paper: options.paper, language: languageOf(person?.language), title: 'Labels' }) };
+  return { name: fileName(['labels'], 'pdf'), body: await labelSheet(codes.map((code) => ({ code, facts: null })), { paper: options.paper, language: languageOf(person?.language), title: 'Labels' }) };
 }
 
 function languageOf(language: string | undefined): LabelLanguage {
   return language !== undefined && language in labelTexts ? (language as LabelLanguage) : 'en';
 }
-
-const fileName = (words: string) => `${words}.pdf`.replace(/[\\/:*?"<>|]+/g, '-');
 
 async function wantedOf(access: Access, { id, onDate }: Round, how: { per: BagsPer; language: LabelLanguage; now: Date; person: string }): Promise<Wanted[]> {
   const field = await fieldRound(access, id, how.now);

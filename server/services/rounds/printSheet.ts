@@ -1,6 +1,7 @@
 import type { Access } from '../../access/access.ts';
 import { Missing } from '../../errors.ts';
 import { crewSheet, type SheetPart } from '../../exporters/crewSheet.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { sheetTexts, type SheetLanguage } from '../../exporters/sheetTexts.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Person } from '../../models/Person.ts';
@@ -22,5 +23,5 @@ export async function printSheet(access: Access, roundId: string, options: { pap
   }
   const first = parts[0]!.round;
   const body = await crewSheet(parts, { paper: options.paper, timeZone: estate.timeZone, link: `${options.publicUrl}/e/${estateId}/field/rounds/${roundId}` });
-  return { name: `${first.blockName} ${first.onDate}.pdf`.replace(/[\\/:*?"<>|]+/g, '-'), body };
+  return { name: fileName([first.blockName, first.onDate], 'pdf'), body };
 }

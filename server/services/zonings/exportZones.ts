@@ -7,6 +7,7 @@ import { pathOnPiece } from '../../../shared/geo/vines.ts';
 import { decodeFloatCells, encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { exportFormats } from '../../exporters/formats.ts';
 import type { ExportedRun, ExportedZone, ZoneExport } from '../../exporters/zoneExport.ts';
 import { gridOf, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
@@ -15,7 +16,6 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
-import { fileName } from './fileName.ts';
 import { readLabels, viewZoning } from './view.ts';
 import { say } from '../../sentences/say.ts';
 

@@ -4,6 +4,7 @@ import type { ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
+import { fileName } from '../../exporters/fileName.ts';
 import { reportTexts, type ReportLanguage } from '../../exporters/report/reportTexts.ts';
 import type { ReportLayer } from '../../exporters/report/zoneReport.ts';
 import { zonesReport } from '../../exporters/report/zonesReport.ts';
@@ -15,7 +16,6 @@ import { Person } from '../../models/Person.ts';
 import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
-import { fileName } from './fileName.ts';
 import { viewZoning } from './view.ts';
 import { say } from '../../sentences/say.ts';
 

@@ -224,6 +224,13 @@ describe('the GeoPackage', () => {
     db.close();
   });
 
+  it('can be of zones that bear the name of its other table', async () => {
+    await manager.patch(`${base}/zonings/${zoningId}`, { name: 'rows by zone' });
+    const { status } = await take('geopackage');
+    await manager.patch(`${base}/zonings/${zoningId}`, { name: 'Été 2026' });
+    expect(status).toBe(200);
+  });
+
   it.skipIf(!hasTool('ogr2ogr'))('is read by GDAL with names, areas and vertices', async () => {
     const file = join(folder, 'zones.gpkg');
     writeFileSync(file, await bytesOf('geopackage'));

@@ -27,8 +27,9 @@ export async function geoPackageOf(layers: readonly FeatureLayer[]): Promise<Buf
 function writeLayer(db: Database, layer: FeatureLayer): void {
   const { name, title, fields, features, madeAt } = layer;
   db.run(`create table ${name} (fid integer primary key autoincrement not null, geom blob, ${fields.map((field) => `${field.name} ${field.type}`).join(', ')})`);
+  // Identifiers must differ from layer to layer; titles that people made may not.
   const bounds = features.length === 0 ? [null, null, null, null] : [...layerBounds(layer)];
-  db.run('insert into gpkg_contents (table_name, data_type, identifier, last_change, min_x, min_y, max_x, max_y, srs_id) values (?, ?, ?, ?, ?, ?, ?, ?, ?)', [name, 'features', title, madeAt.toISOString(), ...bounds, 4326]);
+  db.run('insert into gpkg_contents (table_name, data_type, identifier, description, last_change, min_x, min_y, max_x, max_y, srs_id) values (?, ?, ?, ?, ?, ?, ?, ?, ?, ?)', [name, 'features', name, title, madeAt.toISOString(), ...bounds, 4326]);
   db.run('insert into gpkg_geometry_columns values (?, ?, ?, ?, 0, 0)', [name, 'geom', geometryTypes[features[0]?.shape.kind ?? 'point'], 4326]);
   const columns = ['geom', ...fields.map((field) => field.name)];
   for (const { values, shape } of features) db.run(`insert into ${name} (${columns.join(', ')}) values (${columns.map(() => '?').join(', ')})`, [geometryBlob(shape, 4326), ...values]);

@@ -1,4 +1,5 @@
 import { deflateSync } from 'node:zlib';
+import { xmlText } from './features/xmlText.ts';
 
 type Samples = Uint8Array | Uint16Array | Float32Array;
 
@@ -64,13 +65,13 @@ export function geoTiffBytes(input: GeoTiffInput): Buffer {
   return Buffer.concat([header, ...strips.flatMap((strip) => (strip.length % 2 === 1 ? [strip, Buffer.alloc(1)] : [strip])), directory]);
 }
 
-const inXml: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;' };
-const escaped = (text: string) => text.replace(/[&<>"]/g, (sign) => inXml[sign]!);
+/** Names and units as GDAL's tag has them: escaped for the value and again for the XML around it, as GDAL takes both off (its GeoTIFF driver). */
+const twice = (text: string) => xmlText(xmlText(text));
 
 function bandMetadata(bands: readonly { name: string; unit: string }[]): string {
   const items = bands.flatMap(({ name, unit }, band) => [
-    `<Item name="DESCRIPTION" sample="${band}" role="description">${escaped(name)}</Item>`,
-    ...(unit === '' ? [] : [`<Item name="UNITTYPE" sample="${band}" role="unittype">${escaped(unit)}</Item>`]),
+    `<Item name="DESCRIPTION" sample="${band}" role="description">${twice(name)}</Item>`,
+    ...(unit === '' ? [] : [`<Item name="UNITTYPE" sample="${band}" role="unittype">${twice(unit)}</Item>`]),
   ]);
   return `<GDALMetadata>${items.join('')}</GDALMetadata>`;
 }

@@ -19,6 +19,7 @@ import { gridOf } from '../../server/ground/blockVines.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Block } from '../../server/models/Block.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
+import { Layer } from '../../server/models/Layer.ts';
 import { Person } from '../../server/models/Person.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { hasTool, readWithGdal } from './support/gdal.ts';
@@ -255,9 +256,12 @@ describe('layers as a raster', () => {
 
   it.skipIf(!hasTool('gdalinfo'))('are read by GDAL with reference, no-data and name', async () => {
     const file = join(folder, 'layers.tif');
+    const name = 'Flight & "June" <b>, 日本';
+    await Layer.query().findById(plot.layerId).patch({ name, unit: 'mg/L & more' });
     writeFileSync(file, await bytesOf('layers'));
-    const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { bands: { description: string; noDataValue: unknown; type: string }[]; stac?: { 'proj:epsg'?: number }; coordinateSystem: { wkt: string } };
-    expect(info.bands).toMatchObject([{ description: 'Flight of June', noDataValue: 'NaN', type: 'Float32' }]);
+    await Layer.query().findById(plot.layerId).patch({ name: 'Flight of June', unit: '' });
+    const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { bands: { description: string; unit: string; noDataValue: unknown; type: string }[]; stac?: { 'proj:epsg'?: number }; coordinateSystem: { wkt: string } };
+    expect(info.bands).toMatchObject([{ description: name, unit: 'mg/L & more', noDataValue: 'NaN', type: 'Float32' }]);
     expect(info.coordinateSystem.wkt).toContain(String(place.epsg));
   });
 });

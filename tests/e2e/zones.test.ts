@@ -119,8 +119,30 @@ describe('from layers to zones in force', () => {
     await page.keyboard.press((await zoning(page)).zones.length > 2 ? '3' : '2');
     await done(page, 'One row given to zone');
     await page.locator('ol li').getByText('Row 6', { exact: true }).first().waitFor();
+    // What is pressed goes with its act: whoever works by keys goes on at the rows or at the zone's line.
+    for (let step = 0; step < 20; step++) await page.keyboard.press('ArrowDown');
+    await page.keyboard.press('Space');
+    await page.getByRole('button', { name: /along this row$/ }).press('Enter');
+    await done(page, 'split along a row');
+    await expect.poll(() => strip.evaluate((grid) => grid === document.activeElement)).toBe(true);
+    const line = page.getByRole('table', { name: 'Zones of the block' }).locator('tbody .ledger-name').first();
+    await line.press('Enter');
+    await page.getByLabel('Name', { exact: true }).fill('By keys');
+    await page.getByLabel('Name', { exact: true }).press('Enter');
+    await done(page, 'By keys');
+    await expect.poll(() => line.evaluate((name) => name === document.activeElement)).toBe(true);
+    // A line beside the block cuts nothing, and that is said where one looks, however far down.
+    await page.getByRole('button', { name: 'Split by a line' }).press('Enter');
+    const [west, south, , north] = boxOf(await zoning(page), 1);
+    await giveCorners(page, [[west - 1, south], [west - 1, north]]);
+    await page.getByRole('button', { name: /^Split zone \d+ here$/ }).click();
+    const said = page.getByText('does not cut zone', { exact: false });
+    await said.waitFor();
+    expect(await said.evaluate((words) => words.getBoundingClientRect().top >= 0 && words.getBoundingClientRect().bottom <= innerHeight)).toBe(true);
+    await page.getByRole('button', { name: 'Not now' }).first().click();
     await page.getByRole('button', { name: 'Follow the rows' }).click();
     await done(page, 'Snapped to whole rows');
+    expect(await said.count()).toBe(0);
     const before = await zoning(page);
     await page.getByRole('button', { name: 'Undo' }).click();
     await page.getByText('Undone, can be redone').waitFor();

@@ -570,9 +570,17 @@ describe('publishing', () => {
   });
 
   it('puts two drafts that are published in one moment in force one after the other', async () => {
+    const before = await draft(2);
+    expect((await publish(before)).status).toBe(200);
     const both = [await draft(2), await draft(3)];
-    const answers = await Promise.all(both.map((zoningId) => publish(zoningId)));
-    expect(answers.map(({ status }) => status)).toEqual([200, 200]);
+    // Both are under way before either comes to the zones in force.
+    const hold = await Zoning.startTransaction();
+    await Zoning.query(hold).findById(before).forUpdate();
+    const answers = both.map((zoningId) => publish(zoningId));
+    const waiting = async () => Number((await app.knex.raw("select count(*) as n from pg_stat_activity where datname = current_database() and wait_event_type = 'Lock'")).rows[0].n);
+    await expect.poll(waiting, { timeout: 10_000 }).toBe(2);
+    await hold.commit();
+    expect((await Promise.all(answers)).map(({ status }) => status)).toEqual([200, 200]);
     expect(await Zoning.query().where({ blockId: plot.blockId, state: 'live' }).resultSize()).toBe(1);
   });
 

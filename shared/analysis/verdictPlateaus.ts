@@ -1,9 +1,11 @@
 /**
  * A straight border looks like a stripe: along it a layer is alike over any distance. What tells them apart is width. A camera's
  * or a machine's swaths are narrow and each has a level of its own; plateaus are wide, and a few of them explain the whole
- * profile across. The best stair with treads of at least 40 m is found by dynamic programming (Fisher 1958, from memory). Where a
- * second layer measured by another sensor steps at the same places, width need not tell: treads may be as narrow as a patch.
- * In: profiles across the direction of the suspected stripes. Out: whether they are borders. Cost: steps² × treads.
+ * profile across. The best stair with treads of at least 40 m is found by dynamic programming (Fisher 1958, from memory). A border
+ * winds a little and smoothing blurs it, so that its riser slants: half a tread may pass in a straight line from one level to the next,
+ * as in lines of several segments (Hudson 1966, from memory). Where a second layer measured by another sensor steps at the same
+ * places, width need not tell: treads may be as narrow as a patch.
+ * In: profiles across the direction of the suspected stripes. Out: whether they are borders. Cost: steps² × treads, steps³ × treads where risers slant.
  */
 
 import { correlation } from './agreement.ts';
@@ -19,15 +21,21 @@ export interface AcrossProfile {
 /** Wider than the swath of a camera flown over vines, and than what a machine passes over at once; our own limit. */
 const NARROWEST_TREAD_M = 40;
 const NARROWEST_TREAD_TOGETHER_M = 15;
+/** A border that winds more is no stripe to begin with (judgement). */
+const WIDEST_RISER_M = 20;
 const MOST_TREADS = 6;
 /** Share of the profile's variance that the stair must explain, alone or when another layer steps along. */
 const LEAST_EXPLAINED = 0.95;
+/** What is left to slanting risers is small; with less, their search is not worth its time. */
+const LEAST_EXPLAINED_STEEP = 0.85;
 export const LEAST_EXPLAINED_TOGETHER = 0.85;
 const LEAST_CORRELATION = 0.8;
 
 /** `others`: the same profile of each other layer. */
 export function arePlateaus(profile: AcrossProfile, others: readonly AcrossProfile[], stepM: number): boolean {
-  if (stairShare(profile, NARROWEST_TREAD_M / stepM) >= LEAST_EXPLAINED) return true;
+  const wide = stairShare(profile, NARROWEST_TREAD_M / stepM);
+  if (wide >= LEAST_EXPLAINED) return true;
+  if (wide >= LEAST_EXPLAINED_STEEP && slantedStairShare(profile, { narrowest: NARROWEST_TREAD_M / stepM, widestRiser: WIDEST_RISER_M / stepM }) >= LEAST_EXPLAINED) return true;
   return stepTogether(profile, others) && stairShare(profile, NARROWEST_TREAD_TOGETHER_M / stepM) >= LEAST_EXPLAINED_TOGETHER;
 }
 
@@ -65,4 +73,61 @@ export function stairShare({ means, counts, places }: AcrossProfile, narrowest: 
     before = now;
   }
   return Math.min(1, Math.max(0, 1 - least / total));
+}
+
+/**
+ * The same, where up to `widestRiser` steps between two treads may lie on the straight line from one level to the next; treads that
+ * touch have none. Means 1 1 2 3 4 5 5 with equal counts, treads of 2 and risers of 3 give 1.
+ */
+export function slantedStairShare({ means, counts, places }: AcrossProfile, { narrowest, widestRiser }: { narrowest: number; widestRiser: number }): number {
+  const steps = means.length;
+  const all = treadFrom({ means, counts }, 0, steps);
+  if (steps === 0 || all.within <= 0) return 0;
+  const treads: Tread[] = [];
+  for (let from = 0; from < steps; from++) {
+    for (let to = from + 1; to <= steps; to++) if (places[to - 1]! - places[from]! + 1 >= narrowest) treads.push(treadFrom({ means, counts }, from, to));
+  }
+  const beginning = Array.from({ length: steps }, (_, from) => treads.flatMap((tread, at) => (tread.from === from ? [at] : [])));
+  let before = treads.map(({ from, within }) => (from === 0 ? within : Infinity));
+  let least = all.within;
+  for (let count = 2; count <= MOST_TREADS; count++) {
+    const now = treads.map(() => Infinity);
+    treads.forEach((tread, at) => {
+      if (before[at] === Infinity) return;
+      for (let from = tread.to; from < steps && places[from]! - places[tread.to - 1]! - 1 <= widestRiser; from++) {
+        for (const next of beginning[from]!) {
+          const cost = before[at]! + treads[next]!.within + besideRiser({ means, counts, places }, tread, treads[next]!);
+          if (cost < now[next]!) now[next] = cost;
+        }
+      }
+    });
+    treads.forEach(({ to }, at) => (least = to === steps ? Math.min(least, now[at]!) : least));
+    before = now;
+  }
+  return Math.min(1, Math.max(0, 1 - least / all.within));
+}
+
+/** Steps `from` up to and without `to` at one level, and what is left within them. */
+interface Tread {
+  readonly from: number;
+  readonly to: number;
+  readonly level: number;
+  readonly within: number;
+}
+
+function treadFrom({ means, counts }: Pick<AcrossProfile, 'means' | 'counts'>, from: number, to: number): Tread {
+  let [weight, sum] = [0, 0];
+  for (let i = from; i < to; i++) [weight, sum] = [weight + counts[i]!, sum + counts[i]! * means[i]!];
+  const level = sum / weight;
+  let within = 0;
+  for (let i = from; i < to; i++) within += counts[i]! * (means[i]! - level) ** 2;
+  return { from, to, level, within };
+}
+
+/** What the steps between two treads are off the straight line from one level to the other. */
+function besideRiser({ means, counts, places }: AcrossProfile, before: Tread, after: Tread): number {
+  const [start, end] = [places[before.to - 1]!, places[after.from]!];
+  let sum = 0;
+  for (let i = before.to; i < after.from; i++) sum += counts[i]! * (means[i]! - before.level - ((after.level - before.level) * (places[i]! - start)) / (end - start)) ** 2;
+  return sum;
 }

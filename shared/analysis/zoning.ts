@@ -31,7 +31,7 @@ import { stackBlocks, type BlockPart, type StackedBlocks } from './zoningTogethe
 import type { BlockInput, StageMark, ZoningInput, ZoningOptions, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '11';
+export const ENGINE_VERSION = '12';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;

@@ -7,7 +7,7 @@ import { noiseKinds, slopeKinds } from './simulatedBlock.ts';
 export interface VerdictRow {
   readonly kind: PanelKind;
   readonly areaHa: number;
-  readonly layers: 2 | 3;
+  readonly layers: 1 | 2 | 3;
   readonly blocks: number;
   readonly one: number;
   readonly test: number;
@@ -21,8 +21,8 @@ export interface VerdictRow {
 /** What the verdict should say of each kind. */
 const wantedOf = (kind: PanelKind) => (kind === 'zones' || kind === 'straight' ? 'not one' : noiseKinds.some((noise) => noise === kind) ? 'one' : 'test');
 
-/** `perKind` blocks of each kind and size, with two or three measured layers. */
-export function* benchVerdict(perKind: number, firstSeed: number, layers: 2 | 3): Generator<VerdictRow> {
+/** `perKind` blocks of each kind and size, with one to three measured layers. */
+export function* benchVerdict(perKind: number, firstSeed: number, layers: 1 | 2 | 3): Generator<VerdictRow> {
   for (const [areaHa, cellSizeM] of [[2, 2], [20, 3]] as const) {
     for (const kind of [...noiseKinds, ...slopeKinds, 'zones' as const, 'straight' as const]) {
       const verdicts = judgedPanel({ kind, areaHa, cellSizeM, count: perKind, firstSeed, layerCount: layers }).map(({ verdict }) => verdict);

@@ -20,8 +20,8 @@ export interface PanelOptions {
   readonly firstSeed: number;
   /** Width over which zones pass into each other; zones only. */
   readonly edgeM?: number;
-  /** Measured layers; two where nothing is said. */
-  readonly layerCount?: 2 | 3;
+  /** Measured layers; two where nothing is said, the vigour alone where it is one. */
+  readonly layerCount?: 1 | 2 | 3;
 }
 
 export interface JudgedBlock {
@@ -56,10 +56,10 @@ function blockOf({ kind, areaHa, cellSizeM, firstSeed, edgeM = 6 }: PanelOptions
 }
 
 /** As a zoning looks at the layers when all weights are left to the advice. */
-function evidenceOf(block: SimulatedBlock, layerCount: 2 | 3) {
+function evidenceOf(block: SimulatedBlock, layerCount: 1 | 2 | 3) {
   const { grid, areaM2 } = block;
   const third: ZoningLayer[] = layerCount === 3 ? [{ id: 'third', type: 'yield', role: 'evidence', kind: 'number', cells: block.third(), weight: null }] : [];
-  const { layers } = prepareLayers(grid, [...layersOf(block), ...third], defaultZoningOptions);
+  const { layers } = prepareLayers(grid, [...layersOf(block).slice(0, layerCount), ...third], defaultZoningOptions);
   const advisable = layers.map((layer) => ({ ...layer, cells: layer.smoothed }));
   const advised = adviseLayers(advisable, structuresOf(grid, layersToCompare(advisable), areaM2));
   const scattered = new Set(advised.filter(({ code }) => code === 'scattered').map(({ id }) => id));

@@ -1,5 +1,5 @@
 /**
- * npm run bench -- [--verdict [--layers 3] | --zones] [--count N] [--seed N]   quality on simulated blocks, a line of JSON a row
+ * npm run bench -- [--verdict [--layers 1 | 3] | --zones] [--count N] [--seed N]   quality on simulated blocks, a line of JSON a row
  * npm run bench -- --ripening [--count N] [--seed N]                  do forecasts hold as they say, how often is noise called a change
  * npm run bench -- --sync [--count N] [--seed N]                       field days in random orders: lost and doubled readings
  * npm run bench -- --coverage [--count N] [--seed N]                   what stopping early keeps of its promise; N seasons a setting
@@ -48,7 +48,7 @@ const seed = Number(values.seed);
 
 if (values.requests !== undefined) for await (const row of benchRequests(values.requests, Number(values.count ?? 20))) print(row);
 else if (values.phone !== undefined) for (const row of await benchPhone(values.phone, Number(values.runs))) print(row);
-else if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed, values.layers === '3' ? 3 : 2)) print(row);
+else if (values.verdict) for (const row of benchVerdict(Number(values.count ?? 200), seed, values.layers === '1' ? 1 : values.layers === '3' ? 3 : 2)) print(row);
 else if (values.zones) for (const row of benchZones(Number(values.count ?? 60), seed)) print(row);
 else if (values.sync) for (const row of benchSync(Number(values.count ?? 300), seed)) print(row);
 else if (values.coverage) for (const row of coverageRows(Number(values.count ?? 2000))) print(row);

@@ -35,6 +35,11 @@ describe('a straight border', () => {
     expect(slantedStairShare(profileOf([1, 1, 2, 5, 5]), { narrowest: 2, widestRiser: 1 })).toBeCloseTo(1 - 2 / 3 / 16.8, 12);
     expect(slantedStairShare(profileOf([1, 1, 3, 5, 5]), { narrowest: 2, widestRiser: 0 })).toBeCloseTo(stairShare(profileOf([1, 1, 3, 5, 5]), 2), 12);
     expect(slantedStairShare(profileOf([1, 5, 1, 5]), { narrowest: 3, widestRiser: 1 })).toBe(0);
+    // Twice the steps are taken together by two, each pair alike: the same stair.
+    const long = [...Array<number>(60).fill(0), ...[1, 1, 2, 2, 3, 3], ...Array<number>(74).fill(4)];
+    expect(slantedStairShare(profileOf(long), { narrowest: 8, widestRiser: 8 })).toBeCloseTo(1, 12);
+    // By hand: pairs of −1 and 1 beside two levels; what differs in the pairs, 1 a step, is not explained, the levels' variance of 4 is.
+    expect(slantedStairShare(profileOf(Array.from({ length: 140 }, (_, step) => (step < 70 ? 0 : 4) + (step % 2 === 0 ? 1 : -1))), { narrowest: 8, widestRiser: 8 })).toBeCloseTo(4 / 5, 12);
     const winding = [...Array<number>(16).fill(0), 0.1, 0.3, 0.5, 0.7, 0.9, ...Array<number>(27).fill(1)];
     const rough = winding.map((level, step) => level + (step % 2 === 0 ? 0.08 : -0.08));
     expect(stairShare(profileOf(rough), 40 / 3)).toBeLessThan(0.95);

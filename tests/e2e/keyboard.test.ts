@@ -38,6 +38,8 @@ async function tabTo(page: Page, name: RegExp): Promise<void> {
 
 async function press(page: Page, name: RegExp): Promise<void> {
   await tabTo(page, name);
+  // A busy button takes no press: whoever hears that it is busy waits.
+  await expect.poll(() => page.evaluate(() => document.activeElement?.getAttribute('aria-busy') ?? null), { timeout: 45_000 }).toBe(null);
   await page.keyboard.press('Enter');
 }
 

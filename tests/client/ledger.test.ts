@@ -1,6 +1,9 @@
+import { readFileSync } from 'node:fs';
+import { resolve } from 'node:path';
 import { afterEach, describe, expect, it } from 'vitest';
 import { nextTick } from 'vue';
 import LedgerTable from '../../src/components/base/LedgerTable.vue';
+import { hideWidths } from '../../src/components/base/ledgerTypes.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 interface Zone { id: string; name: string; vines: number | null }
@@ -35,6 +38,12 @@ describe('ledger', () => {
     expect(wrapper.findAll('[role=columnheader]').map((head) => textOf(head.element))).toEqual(['Zone', 'Vines']);
     expect(names()).toEqual(['Kiln bank', 'Middle', 'Ditch']);
     expect(textOf(wrapper.find('tfoot').element)).toContain('3 zones');
+  });
+
+  it('has a rule of the style sheet for every width below which a column may be left out', () => {
+    const css = readFileSync(resolve(import.meta.dirname, '../../src/components/base/ledger.css'), 'utf8');
+    const rules = [...css.matchAll(/@container ledger \(max-width: (\d+)px\) \{ \.ledger \.hide-(\d+) \{ display: none; \} \}/g)].map(([, below, width]) => [Number(below) + 1, Number(width)]);
+    expect(rules).toEqual(hideWidths.map((width) => [width, width]));
   });
 
   it('is one stop for Tab; up, down, Home and End move within', async () => {

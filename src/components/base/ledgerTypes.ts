@@ -4,6 +4,9 @@ export type LedgerColumnKind = 'name' | 'figure' | 'mark' | 'words' | 'state' | 
 /** Place of a cell in the one-column phone form: under the name, at the right, on a line of its own, or left out. */
 export type LedgerPhonePlace = 'second' | 'due' | 'below' | 'hidden';
 
+/** Widths of a ledger in px below which a column may be left out; ledger.css has a rule for each, since a query of a container takes no variable. */
+export const hideWidths = [520, 560, 640, 720, 760, 860, 900] as const;
+
 export interface LedgerColumn<T> {
   /** Names the slots `cell-<id>`, `head-<id>` and `sum-<id>`. */
   readonly id: string;
@@ -17,8 +20,8 @@ export interface LedgerColumn<T> {
   /** Sorts ascending by this value; heads of such columns become buttons. */
   readonly sortBy?: (line: T) => number | string | null;
   readonly phone?: LedgerPhonePlace;
-  /** Left out while the ledger is narrower than this many px (and wider than the phone form). */
-  readonly hideBelow?: number;
+  /** Left out while the ledger is narrower than this many px; in the phone form `phone` alone decides. */
+  readonly hideBelow?: (typeof hideWidths)[number];
 }
 
 /** How a line stands: at rest, asking for an answer, refused or restricted, taken out. */

@@ -5,7 +5,7 @@ export type LedgerColumnKind = 'name' | 'figure' | 'mark' | 'words' | 'state' | 
 export type LedgerPhonePlace = 'second' | 'due' | 'below' | 'hidden';
 
 /** Widths of a ledger in px below which a column may be left out; ledger.css has a rule for each, since a query of a container takes no variable. */
-export const hideWidths = [520, 560, 640, 720, 760, 860, 900] as const;
+export const hideWidths = [520, 640, 720, 760, 860, 900] as const;
 
 export interface LedgerColumn<T> {
   /** Names the slots `cell-<id>`, `head-<id>` and `sum-<id>`. */

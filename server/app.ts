@@ -10,6 +10,7 @@ import type pg from 'pg';
 import { makeCsrf } from './access/csrf.ts';
 import { estateGuard } from './access/guard.ts';
 import { makePassport } from './access/signIn.ts';
+import { storableRequest } from './access/storableRequest.ts';
 import type { Config } from './config.ts';
 import { Missing, problemOf } from './errors.ts';
 import { log } from './log.ts';
@@ -83,7 +84,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
   const csrf = makeCsrf();
   const passport = makePassport({ allowDemo: config.demo });
   const Store = connectPgSimple(session);
-  api.use(express.json({ limit: '2mb' }));
+  api.use(express.json({ limit: '2mb' }), storableRequest);
   api.use(
     session({
       store: new Store({ pool: sessionPool, tableName: 'sessions', pruneSessionInterval: false }),

@@ -5,6 +5,7 @@ import { AsyncLocalStorage } from 'node:async_hooks';
 import { randomUUID } from 'node:crypto';
 import { readdir, rm, stat } from 'node:fs/promises';
 import { join } from 'node:path';
+import { storableInput } from '../../shared/contracts/storableText.ts';
 import { Missing, Unusable } from '../errors.ts';
 import { fileStore } from './fileStore.ts';
 import type { Upload } from './uploads.ts';
@@ -60,6 +61,7 @@ function makeServer(limitBytes: number): Server {
       const open = (await readdir(fileStore().incomingFolder)).filter((name) => name.startsWith(`${owner}.`) && !name.endsWith('.json'));
       if (open.length >= mostUnfinished) throw answer(429, 'tooManyUploads', `${open.length} of your uploads are unfinished. Finish or stop some of them first.`);
       if (!upload.metadata?.filename) throw answer(400, 'noName', 'The upload does not say what its file is called.');
+      if (!storableInput.safeParse(upload.metadata).success) throw answer(422, 'badInput', 'The name of the file holds a character that cannot be kept (NUL). Rename the file and send it again.');
       return {};
     },
     onResponseError: (_request, error) => ('status_code' in error && error.status_code === 413 ? answer(413, 'fileTooLarge', `The file is larger than ${Math.round(limitBytes / 2 ** 20)} MB, the most that is taken.`) : undefined),

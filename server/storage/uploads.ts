@@ -1,7 +1,8 @@
-import type { RequestHandler } from 'express';
+import type { Request, RequestHandler } from 'express';
 import multer from 'multer';
 import { randomUUID } from 'node:crypto';
 import { readFile, rm } from 'node:fs/promises';
+import { storableInput } from '../../shared/contracts/storableText.ts';
 import { fileStore } from './fileStore.ts';
 
 const mostFiles = 40;
@@ -19,7 +20,14 @@ export function receiveFiles(limitBytes: number): RequestHandler {
     destination: (_request, _file, done) => done(null, fileStore().incomingFolder),
     filename: (_request, _file, done) => done(null, randomUUID()),
   });
-  return multer({ storage, limits: { fileSize: limitBytes, files: mostFiles, fields: 20, parts: mostFiles + 20 }, defParamCharset: 'utf8', preservePath: false }).array('files', mostFiles);
+  return multer({ storage, fileFilter: refuseNameless, limits: { fileSize: limitBytes, files: mostFiles, fields: 20, parts: mostFiles + 20 }, defParamCharset: 'utf8', preservePath: false }).array('files', mostFiles);
+}
+
+/** A name that cannot be kept is refused before its file is received. */
+function refuseNameless(_request: Request, file: Express.Multer.File, done: multer.FileFilterCallback): void {
+  const { error } = storableInput.safeParse({ filename: file.originalname });
+  if (error) done(error);
+  else done(null, true);
 }
 
 /** What a request brought, whatever multer makes of it. */

@@ -65,6 +65,7 @@ export const es: Record<string, string> = {
   'This table is longer than 1.5 million characters. Cut it to the seasons you need.': 'Esta tabla pasa de 1,5 millones de caracteres. Recórtela a las campañas que necesita.',
   'This table is longer than 500 000 characters. Cut it to one season.': 'Esta tabla pasa de 500 000 caracteres. Recórtela a una campaña.',
   'Type at least one letter.': 'Escriba al menos una letra.',
+  'The text holds a character that cannot be kept (NUL or half of one). Type it anew instead of pasting it.': 'El texto tiene un carácter que no se puede guardar (NUL o la mitad de uno). Escríbalo de nuevo en vez de pegarlo.',
   'Type the interval as the label gives it.': 'Escriba el plazo como lo da la etiqueta.',
   'Type the number printed on the ticket.': 'Escriba el número impreso en el boletín.',
   'Where nothing was applied there is no interval: leave the day empty.': 'Si no se aplicó nada, no hay plazo: deje el día vacío.',

@@ -65,6 +65,7 @@ export const fr: Record<string, string> = {
   'This table is longer than 1.5 million characters. Cut it to the seasons you need.': 'Ce tableau dépasse 1,5 million de caractères. Coupez-le aux campagnes utiles.',
   'This table is longer than 500 000 characters. Cut it to one season.': 'Ce tableau dépasse 500 000 caractères. Coupez-le à une campagne.',
   'Type at least one letter.': 'Tapez au moins une lettre.',
+  'The text holds a character that cannot be kept (NUL or half of one). Type it anew instead of pasting it.': 'Le texte contient un caractère qui ne peut être gardé (NUL ou la moitié d’un caractère). Retapez-le au lieu de le coller.',
   'Type the interval as the label gives it.': 'Saisissez le délai tel que l’étiquette le donne.',
   'Type the number printed on the ticket.': 'Saisissez le numéro imprimé sur le bon.',
   'Where nothing was applied there is no interval: leave the day empty.': 'Si rien n’a été appliqué, il n’y a pas de délai : laissez le jour vide.',

@@ -65,6 +65,7 @@ export const it: Record<string, string> = {
   'This table is longer than 1.5 million characters. Cut it to the seasons you need.': 'Questa tabella supera 1,5 milioni di caratteri. La tagli alle annate che servono.',
   'This table is longer than 500 000 characters. Cut it to one season.': 'Questa tabella supera 500 000 caratteri. La tagli a una sola annata.',
   'Type at least one letter.': 'Scriva almeno una lettera.',
+  'The text holds a character that cannot be kept (NUL or half of one). Type it anew instead of pasting it.': 'Il testo contiene un carattere che non si può conservare (NUL o metà di un carattere). Lo riscriva invece di incollarlo.',
   'Type the interval as the label gives it.': 'Scriva l’intervallo come lo dà l’etichetta.',
   'Type the number printed on the ticket.': 'Scriva il numero stampato sulla bolletta.',
   'Where nothing was applied there is no interval: leave the day empty.': 'Se nulla è stato distribuito non c’è intervallo: lasci vuoto il giorno.',

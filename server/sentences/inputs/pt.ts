@@ -65,6 +65,7 @@ export const pt: Record<string, string> = {
   'This table is longer than 1.5 million characters. Cut it to the seasons you need.': 'Esta tabela passa de 1,5 milhões de caracteres. Recorte-a às campanhas de que precisa.',
   'This table is longer than 500 000 characters. Cut it to one season.': 'Esta tabela passa de 500 000 caracteres. Recorte-a a uma campanha.',
   'Type at least one letter.': 'Escreva pelo menos uma letra.',
+  'The text holds a character that cannot be kept (NUL or half of one). Type it anew instead of pasting it.': 'O texto tem um carácter que não se pode guardar (NUL ou metade de um). Escreva-o de novo em vez de o colar.',
   'Type the interval as the label gives it.': 'Escreva o intervalo conforme o rótulo.',
   'Type the number printed on the ticket.': 'Escreva o número impresso no talão.',
   'Where nothing was applied there is no interval: leave the day empty.': 'Onde nada foi aplicado não há intervalo: deixe o dia vazio.',

@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import { newBag, type BagBatchAnswer, type BagOutcome, type NewBag } from '../../../shared/contracts/bags.ts';
 import type { Refusal } from '../../../shared/contracts/readings.ts';
+import { storable } from '../../../shared/contracts/storableText.ts';
 import { spellLabelCode } from '../../../shared/field/labelCode.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { strangeVine } from '../../ground/strangeVine.ts';
@@ -48,7 +49,7 @@ const received = (id: string): BagOutcome => ({ id, state: 'received', reason: n
 const refused = (id: string, refusal: Refusal): Answer => ({ outcome: { id, state: 'refused', ...refusal, usedBy: null }, fresh: false });
 
 function parseBag(raw: unknown): { bag: NewBag | null; outcome: BagOutcome } {
-  const parsed = newBag.safeParse(raw);
+  const parsed = storable(newBag).safeParse(raw);
   if (parsed.success) return { bag: parsed.data, outcome: received(parsed.data.id) };
   const id = typeof raw === 'object' && raw !== null && 'id' in raw && typeof raw.id === 'string' ? raw.id : '';
   return { bag: null, outcome: { id, state: 'refused', reason: parsed.error.issues.map((issue) => `${issue.path.join('.') || 'bag'}: ${issue.message}`).join('; '), usedBy: null } };

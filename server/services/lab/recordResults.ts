@@ -1,5 +1,6 @@
 import type { Transaction } from 'objection';
 import { newLabResult, type LabOutcome, type NewLabResult } from '../../../shared/contracts/lab.ts';
+import { storable } from '../../../shared/contracts/storableText.ts';
 import { entryValues, type EntryValue } from '../../../shared/lab/entryText.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import { unitsOf } from '../../../shared/lab/units.ts';
@@ -29,7 +30,7 @@ interface Context {
  */
 export async function recordResults(access: Access, input: { results: unknown[] }, now: Date): Promise<LabOutcome[]> {
   return Reading.transaction(async (trx) => {
-    const parsed = input.results.map((raw) => ({ raw, parsed: newLabResult.safeParse(raw) }));
+    const parsed = input.results.map((raw) => ({ raw, parsed: storable(newLabResult).safeParse(raw) }));
     const context = await loadContext(trx, access, parsed.flatMap((item) => item.parsed.data ?? []));
     const outcomes: LabOutcome[] = [];
     const fresh: Partial<Reading>[] = [];

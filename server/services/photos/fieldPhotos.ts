@@ -2,6 +2,7 @@ import { readFile, writeFile } from 'node:fs/promises';
 import type { Readable } from 'node:stream';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
 import { newFieldPhoto, type FieldPhotoView, type NewFieldPhoto } from '../../../shared/contracts/fieldPhotos.ts';
+import { storable } from '../../../shared/contracts/storableText.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { Missing, Unusable } from '../../errors.ts';
 import { loadBlockVines } from '../../ground/blockVines.ts';
@@ -24,7 +25,7 @@ import { say } from '../../sentences/say.ts';
 /** Keeps a photo of a vine, freed of place and device. Sent again it is kept once; refused it leaves nothing. */
 export async function keepPhoto(access: Access, facts: unknown, uploads: readonly Upload[]): Promise<{ id: string }> {
   try {
-    const input = newFieldPhoto.parse(readFacts(facts));
+    const input = storable(newFieldPhoto).parse(readFacts(facts));
     const [upload, ...more] = uploads;
     if (!upload || more.length > 0) throw new Unusable('onePhoto', say('onePhoto'));
     await refuseStrange(access, input);

@@ -1,6 +1,7 @@
 import type { Transaction } from 'objection';
 import type { z } from 'zod';
 import { newReading, vineFinding, type BatchAnswer, type NewReading, type ReadingOutcome } from '../../../shared/contracts/readings.ts';
+import { storable } from '../../../shared/contracts/storableText.ts';
 import { requireReach, type Access } from '../../access/access.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Reading } from '../../models/Reading.ts';
@@ -57,7 +58,7 @@ interface Parsed<Item> {
 }
 
 function parse<Item extends { id: string }>(contract: z.ZodType<Item>, raw: unknown): Parsed<Item> {
-  const parsed = contract.safeParse(raw);
+  const parsed = storable(contract).safeParse(raw);
   if (parsed.success) return { item: parsed.data, outcome: { id: parsed.data.id, state: 'received', reason: null } };
   const id = typeof raw === 'object' && raw !== null && 'id' in raw && typeof raw.id === 'string' ? raw.id : '';
   return { item: null, outcome: { id, state: 'refused', reason: parsed.error.issues.map((issue) => `${issue.path.join('.') || 'reading'}: ${issue.message}`).join('; ') } };

@@ -16,6 +16,12 @@ function addressOf(port, host = process.env.HOST) {
   return `http://${host.includes(':') ? `[${host}]` : host}:${port}`;
 }
 
+/** The same for this program, by number: no name has to be found first, and none of another listener can be meant. */
+function ownAddress(port, host = process.env.HOST) {
+  const number = { '': '127.0.0.1', '0.0.0.0': '127.0.0.1', '::': '[::1]' }[host ?? ''];
+  return number ? `http://${number}:${port}` : addressOf(port, host);
+}
+
 /** Starts the server and says where it is. */
 async function serve(database, keep) {
   const wanted = wantedPort();
@@ -24,7 +30,7 @@ async function serve(database, keep) {
   say('Starting the server …');
   const logFile = inState('server.log');
   const server = keep(startService({ name: 'server', args: [builtProgram('server.js')], env: { ...applicationEnv(database), PORT: String(port) }, logFile }));
-  await untilReady(server, { url: `${addressOf(port)}/api/ready`, logFile });
+  await untilReady(server, { url: `${ownAddress(port)}/api/ready`, logFile });
   console.log(banner({ address: addressOf(port), logFile: path.relative(root, logFile) }));
   return server;
 }

@@ -1,9 +1,9 @@
 import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import { closeSync, openSync, readFileSync, statSync } from 'node:fs';
-import { setTimeout as sleep } from 'node:timers/promises';
 import { inCheckout, root } from '../checkout.mjs';
 import { Problem } from '../progress.mjs';
+import { waitForAnswer } from './untilReady.mjs';
 
 const stopWithinMs = 10_000;
 const keptLogBytes = 5_000_000;
@@ -60,15 +60,10 @@ function killGroup(pid) {
 }
 
 /** Waits until the address answers with a 2xx status while the service runs. */
-export async function untilReady(service, { url, withinMs = 60_000, logFile }) {
-  const end = Date.now() + withinMs;
-  while (Date.now() < end) {
-    if (!service.isRunning()) throw new Problem(`The ${service.name} did not start (log: ${logFile}):\n${logTail(logFile)}`);
-    const isReady = await fetch(url, { signal: AbortSignal.timeout(5_000) }).then(({ ok }) => ok, () => false);
-    if (isReady) return;
-    await sleep(100);
-  }
-  throw new Problem(`The ${service.name} does not answer at ${url} (log: ${logFile}):\n${logTail(logFile)}`);
+export async function untilReady(service, { url, logFile }) {
+  const tried = await waitForAnswer(url, { isRunning: service.isRunning });
+  if (!service.isRunning()) throw new Problem(`The ${service.name} did not start (log: ${logFile}):\n${logTail(logFile)}`);
+  if (tried !== null) throw new Problem(`The ${service.name} does not answer at ${url}. ${tried} Log: ${logFile}\n${logTail(logFile)}`);
 }
 
 /** Path of a built program of the server. */

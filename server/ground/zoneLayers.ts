@@ -1,8 +1,11 @@
+import { AnalysisError } from '../../shared/analysis/analysisError.ts';
 import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
 import type { ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 import { layerType } from '../../shared/catalog/layerTypes.ts';
+import { Unusable } from '../errors.ts';
 import { BlockLayer } from '../models/BlockLayer.ts';
 import { Layer } from '../models/Layer.ts';
+import { say } from '../sentences/say.ts';
 
 /** A layer of the estate as it lies on one block. */
 export interface PlacedOnBlock {
@@ -24,5 +27,15 @@ export async function loadBlockLayers(estateId: string, blockId: string, layerId
 /** As the zoning takes it; a null weight lets the advice decide. */
 export function zoningLayer({ layer, placed }: PlacedOnBlock, weight: number | null): ZoningLayer {
   const type = layerType(layer.type);
-  return { id: layer.id, name: layer.name, type: layer.type, role: type.role, kind: type.resampling === 'class' ? 'class' : 'number', cells: decodeFloatCells(placed.cells), weight };
+  return { id: layer.id, name: layer.name, type: layer.type, role: type.role, kind: type.resampling === 'class' ? 'class' : 'number', cells: storedCells(layer, placed), weight };
+}
+
+/** Values of a layer on a block. Of several layers one may be damaged: the refusal says which. */
+export function storedCells({ name }: Pick<Layer, 'name'>, { cells }: Pick<BlockLayer, 'cells'>): Float32Array {
+  try {
+    return decodeFloatCells(cells);
+  } catch (error) {
+    if (error instanceof AnalysisError) throw new Unusable('layerCells', say('layerCells', { layer: name }));
+    throw error;
+  }
 }

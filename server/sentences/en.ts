@@ -166,6 +166,8 @@ export const en = {
   layerOutOfDate: 'Layer "{layer}" was made for an older outline of {block}. Place it again first.',
   layerBlocked: 'Layer "{layer}" has findings that keep it out. Read them, and overrule them with a reason if you must.',
   layerCoverage: 'Layer "{layer}" covers {percent} % of {block}; {least} % is needed.',
+  layerCells: 'The stored values of layer "{layer}" cannot be read. Import its file again, or leave the layer out.',
+  noWeight: 'No layer would vote: those measured have weight 0, and the others only describe the place and stay out on advice. Give at least one a weight above 0.',
   outlineChangedSinceAsked: 'The outline of {block} has changed since this zoning was asked for. Run it again.',
   uploadGone: 'This upload is not here any more. Send the file again.',
   blockWalked: '{block} has an open round. Close or call it off first. | {block} has {n} open rounds. Close or call them off first.',

@@ -167,6 +167,8 @@ export const es: Record<SentenceKey, string> = {
   layerOutOfDate: 'La capa «{layer}» se hizo para un contorno anterior de {block}. Colóquela antes de nuevo.',
   layerBlocked: 'La capa «{layer}» tiene avisos rojos que la dejan fuera. Léalos y, si es necesario, responda de su uso con un motivo.',
   layerCoverage: 'La capa «{layer}» cubre el {percent} % de {block}; hace falta el {least} %.',
+  layerCells: 'No se pueden leer los valores guardados de la capa «{layer}». Importe de nuevo su archivo o deje fuera la capa.',
+  noWeight: 'No votaría ninguna capa: las medidas tienen peso 0 y las demás solo describen el lugar y quedan fuera según el consejo. Dé al menos a una un peso mayor que 0.',
   outlineChangedSinceAsked: 'El contorno de {block} ha cambiado desde que se pidió esta zonificación. Calcúlela otra vez.',
   uploadGone: 'Este envío ya no está aquí. Envíe otra vez el archivo.',
   blockWalked: '{block} tiene una ronda abierta. Ciérrela o anúlela antes. | {block} tiene {n} rondas abiertas. Ciérrelas o anúlelas antes.',

@@ -167,6 +167,8 @@ export const fr: Record<SentenceKey, string> = {
   layerOutOfDate: 'La couche « {layer} » a été faite pour un ancien contour de {block}. Replacez-la d’abord.',
   layerBlocked: 'La couche « {layer} » a des constats qui l’excluent. Lisez-les, et s’il le faut, utilisez-la quand même avec une raison.',
   layerCoverage: 'La couche « {layer} » couvre {percent} % de {block} ; il en faut {least} %.',
+  layerCells: 'Les valeurs enregistrées de la couche « {layer} » sont illisibles. Importez de nouveau son fichier, ou laissez la couche de côté.',
+  noWeight: 'Aucune couche ne voterait : celles qui sont mesurées ont le poids 0, et les autres ne décrivent que le lieu et restent dehors selon le conseil. Donnez à au moins une un poids supérieur à 0.',
   outlineChangedSinceAsked: 'Le contour de {block} a changé depuis que ce zonage a été demandé. Relancez-le.',
   uploadGone: 'Cet envoi n’est plus ici. Renvoyez le fichier.',
   blockWalked: '{block} a une tournée en cours. Clôturez-la ou annulez-la d’abord. | {block} a {n} tournées en cours. Clôturez-les ou annulez-les d’abord.',

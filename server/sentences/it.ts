@@ -167,6 +167,8 @@ export const it: Record<SentenceKey, string> = {
   layerOutOfDate: 'Lo strato «{layer}» è stato fatto per un contorno precedente di {block}. Prima lo ricollochi.',
   layerBlocked: 'Lo strato «{layer}» ha rilievi che lo escludono. Li legga e, se necessario, lo usi comunque con un motivo.',
   layerCoverage: 'Lo strato «{layer}» copre il {percent} % di {block}; serve il {least} %.',
+  layerCells: 'I valori salvati dello strato «{layer}» non si possono leggere. Importi di nuovo il suo file o lasci fuori lo strato.',
+  noWeight: 'Nessuno strato voterebbe: quelli misurati hanno peso 0, e gli altri descrivono soltanto il luogo e restano fuori secondo il consiglio. Dia ad almeno uno un peso superiore a 0.',
   outlineChangedSinceAsked: 'Il contorno di {block} è cambiato da quando è stata chiesta questa zonazione. La calcoli di nuovo.',
   uploadGone: 'Questo invio non è più qui. Invii di nuovo il file.',
   blockWalked: '{block} ha un giro in corso. Prima lo chiuda o lo annulli. | {block} ha {n} giri in corso. Prima li chiuda o li annulli.',

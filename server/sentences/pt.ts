@@ -167,6 +167,8 @@ export const pt: Record<SentenceKey, string> = {
   layerOutOfDate: 'A camada «{layer}» foi feita para um contorno anterior de {block}. Coloque-a primeiro de novo.',
   layerBlocked: 'A camada «{layer}» tem avisos vermelhos que a deixam de fora. Leia-os e, se for preciso, responda pelo seu uso com um motivo.',
   layerCoverage: 'A camada «{layer}» cobre {percent} % de {block}; são precisos {least} %.',
+  layerCells: 'Os valores guardados da camada «{layer}» não podem ser lidos. Importe de novo o seu ficheiro ou deixe a camada de fora.',
+  noWeight: 'Nenhuma camada votaria: as medidas têm peso 0 e as outras só descrevem o lugar e ficam de fora segundo o conselho. Dê a pelo menos uma um peso acima de 0.',
   outlineChangedSinceAsked: 'O contorno de {block} mudou desde que este zonamento foi pedido. Calcule-o de novo.',
   uploadGone: 'Este envio já não está aqui. Envie o ficheiro de novo.',
   blockWalked: '{block} tem uma ronda aberta. Feche-a ou anule-a primeiro. | {block} tem {n} rondas abertas. Feche-as ou anule-as primeiro.',

@@ -50,5 +50,5 @@ function checked(bytes: Uint8Array, type: number, bytesPerCell: number): { view:
 }
 
 function damaged(reason: string): AnalysisError {
-  return new AnalysisError('cells-damaged', `Stored cells cannot be read: ${reason}. Import the layer again.`);
+  return new AnalysisError('cells-damaged', `Stored cells cannot be read: ${reason}. Make anew what they belong to: import the layer again, or run the zoning again.`);
 }

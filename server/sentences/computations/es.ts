@@ -1,7 +1,7 @@
 /** What a computation cannot use, by its English sentence; {1}, {2} … are its facts in their order. */
 export const es: Record<string, string> = {
   'The labellings have {1} and {2} items; they must be the same items.': 'Los dos repartos tienen {1} y {2} elementos; deben ser los mismos elementos.',
-  'Stored cells cannot be read: {1}. Import the layer again.': 'No se pueden leer las celdas guardadas: {1}. Importe la capa de nuevo.',
+  'Stored cells cannot be read: {1}. Make anew what they belong to: import the layer again, or run the zoning again.': 'No se pueden leer las celdas guardadas: {1}. Vuelva a hacer aquello de lo que forman parte: importe de nuevo la capa o repita la zonificación.',
   'The zoning does not fill the block cell by cell; make it again on the present outline.': 'La zonificación no llena la parcela celda por celda; hágala de nuevo sobre el contorno actual.',
   'Choose a second zone to merge with zone {1}.': 'Elija una segunda zona para unirla a la zona {1}.',
   'No ground of another zone lies there to give to zone {1}; choose a larger shape or other rows.': 'Ahí no hay terreno de otra zona que dar a la zona {1}; elija una forma mayor u otras hileras.',

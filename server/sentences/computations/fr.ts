@@ -1,7 +1,7 @@
 /** What a computation cannot use, by its English sentence; {1}, {2} … are its facts in their order. */
 export const fr: Record<string, string> = {
   'The labellings have {1} and {2} items; they must be the same items.': 'Les deux partages ont {1} et {2} éléments ; ce doivent être les mêmes éléments.',
-  'Stored cells cannot be read: {1}. Import the layer again.': 'Les cellules enregistrées sont illisibles : {1}. Importez de nouveau la couche.',
+  'Stored cells cannot be read: {1}. Make anew what they belong to: import the layer again, or run the zoning again.': 'Les cellules enregistrées sont illisibles : {1}. Refaites ce dont elles font partie : importez de nouveau la couche ou relancez le zonage.',
   'The zoning does not fill the block cell by cell; make it again on the present outline.': 'Le zonage ne remplit pas la parcelle cellule par cellule ; refaites-le sur le contour actuel.',
   'Choose a second zone to merge with zone {1}.': 'Choisissez une deuxième zone à réunir à la zone {1}.',
   'No ground of another zone lies there to give to zone {1}; choose a larger shape or other rows.': 'Il n’y a là aucun terrain d’une autre zone à donner à la zone {1} ; choisissez une forme plus grande ou d’autres rangs.',

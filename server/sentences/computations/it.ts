@@ -1,7 +1,7 @@
 /** What a computation cannot use, by its English sentence; {1}, {2} … are its facts in their order. */
 export const it: Record<string, string> = {
   'The labellings have {1} and {2} items; they must be the same items.': 'Le due suddivisioni hanno {1} e {2} elementi; devono essere gli stessi elementi.',
-  'Stored cells cannot be read: {1}. Import the layer again.': 'Le celle salvate non si possono leggere: {1}. Importi di nuovo lo strato.',
+  'Stored cells cannot be read: {1}. Make anew what they belong to: import the layer again, or run the zoning again.': 'Le celle salvate non si possono leggere: {1}. Rifaccia ciò di cui fanno parte: importi di nuovo lo strato o ripeta la zonizzazione.',
   'The zoning does not fill the block cell by cell; make it again on the present outline.': 'La zonazione non riempie l’appezzamento cella per cella; la rifaccia sul contorno attuale.',
   'Choose a second zone to merge with zone {1}.': 'Scelga una seconda zona da unire alla zona {1}.',
   'No ground of another zone lies there to give to zone {1}; choose a larger shape or other rows.': 'Lì non c’è terreno di un’altra zona da dare alla zona {1}; scelga una forma più grande o altri filari.',

@@ -1,7 +1,7 @@
 /** What a computation cannot use, by its English sentence; {1}, {2} … are its facts in their order. */
 export const pt: Record<string, string> = {
   'The labellings have {1} and {2} items; they must be the same items.': 'As duas divisões têm {1} e {2} elementos; têm de ser os mesmos elementos.',
-  'Stored cells cannot be read: {1}. Import the layer again.': 'As células guardadas não podem ser lidas: {1}. Importe a camada de novo.',
+  'Stored cells cannot be read: {1}. Make anew what they belong to: import the layer again, or run the zoning again.': 'As células guardadas não podem ser lidas: {1}. Faça de novo aquilo a que pertencem: importe a camada de novo ou repita o zoneamento.',
   'The zoning does not fill the block cell by cell; make it again on the present outline.': 'O zonamento não preenche a parcela célula a célula; faça-o de novo sobre o contorno atual.',
   'Choose a second zone to merge with zone {1}.': 'Escolha uma segunda zona para juntar à zona {1}.',
   'No ground of another zone lies there to give to zone {1}; choose a larger shape or other rows.': 'Não há ali terreno de outra zona para dar à zona {1}; escolha uma forma maior ou outros bardos.',

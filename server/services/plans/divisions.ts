@@ -1,4 +1,4 @@
-import { decodeFloatCells, decodeLabels } from '../../../shared/analysis/cellBytes.ts';
+import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import type { Cells, Labels } from '../../../shared/analysis/grid.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { PlanBasis } from '../../../shared/contracts/planBasis.ts';
@@ -11,6 +11,7 @@ import type { Access } from '../../access/access.ts';
 import { gridOf, isBearing } from '../../ground/blockVines.ts';
 import type { DividedZone, DivideZonesInput } from '../../ground/divideZones.ts';
 import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { storedCells } from '../../ground/zoneLayers.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
 import { runCompute } from '../../workers/computePool.ts';
@@ -65,5 +66,5 @@ function demandOf({ answer, choices, basis }: { answer: PlanAnswer; choices: Pla
 async function layersOn(estateId: string, { ground }: PlanGround): Promise<{ id: string; name: string; cells: Cells }[]> {
   const placed = await BlockLayer.query().where({ estateId, blockId: ground.block.id, gridKey: gridOf(ground).key });
   const layers = await Layer.query().where({ estateId }).whereNull('retiredAt').findByIds(placed.map(({ layerId }) => layerId));
-  return layers.filter(({ type }) => layerType(type).resampling !== 'class').map(({ id, name }) => ({ id, name, cells: decodeFloatCells(placed.find(({ layerId }) => layerId === id)!.cells) }));
+  return layers.filter(({ type }) => layerType(type).resampling !== 'class').map((layer) => ({ id: layer.id, name: layer.name, cells: storedCells(layer, placed.find(({ layerId }) => layerId === layer.id)!) }));
 }

@@ -4,14 +4,14 @@ import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates
 import { vineLabel } from '../../../shared/geo/numbering.ts';
 import { fromUtm } from '../../../shared/geo/utm.ts';
 import { pathOnPiece } from '../../../shared/geo/vines.ts';
-import { decodeFloatCells, encodeCells } from '../../../shared/analysis/cellBytes.ts';
+import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { fileName } from '../../exporters/fileName.ts';
 import { exportFormats } from '../../exporters/formats.ts';
 import type { ExportedRun, ExportedZone, ZoneExport } from '../../exporters/zoneExport.ts';
 import { gridOf, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
-import { loadBlockLayers } from '../../ground/zoneLayers.ts';
+import { loadBlockLayers, storedCells } from '../../ground/zoneLayers.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Zoning } from '../../models/Zoning.ts';
@@ -53,7 +53,7 @@ async function exportInput(access: Access, zoningId: string, { zones, language, 
 async function layerCells(access: Access, view: ZoningView, zoning: Zoning): Promise<ZoneExport['layers']> {
   const placed = (await loadBlockLayers(access.estateId, view.blockId, view.layers.map(({ layerId }) => layerId))).filter((one) => one.placed.gridKey === zoning.gridKey);
   if (placed.length === 0) throw new Clash('noLayers', say('noLayers'));
-  return placed.map(({ layer, placed: on }) => ({ name: layer.name, unit: layer.unit, cells: decodeFloatCells(on.cells) }));
+  return placed.map(({ layer, placed: on }) => ({ name: layer.name, unit: layer.unit, cells: storedCells(layer, on) }));
 }
 
 /** Runs along the rows in the numbers that the posts carry, from row 1 on and from vine 1 on. */

@@ -1,12 +1,11 @@
 import { adjustedRandIndex } from '../../../shared/analysis/agreement.ts';
-import { decodeFloatCells } from '../../../shared/analysis/cellBytes.ts';
 import { seasonAgreement } from '../../../shared/analysis/seasonAgreement.ts';
 import { vinesApart } from '../../../shared/analysis/zonePairs.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import { groundKinds, zoningOptions, type ZoningSeasons } from '../../../shared/contracts/zonings.ts';
 import type { Access } from '../../access/access.ts';
 import { gridOf, loadBlockVines, type BlockVines } from '../../ground/blockVines.ts';
-import { loadBlockLayers, type PlacedOnBlock } from '../../ground/zoneLayers.ts';
+import { loadBlockLayers, storedCells, type PlacedOnBlock } from '../../ground/zoneLayers.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
@@ -66,7 +65,7 @@ function otherLayers({ chosen, all }: MeasuredLayers): ZoningSeasons['layers'] {
   const seen = new Set<string>();
   return chosen.flatMap((one) => {
     const [other] = all.filter((candidate) => isOtherSeason(one, candidate)).sort((a, b) => daysApart(one, a) - daysApart(one, b));
-    const agreement = other ? seasonAgreement(decodeFloatCells(one.placed.cells), decodeFloatCells(other.placed.cells)) : null;
+    const agreement = other ? seasonAgreement(storedCells(one.layer, one.placed), storedCells(other.layer, other.placed)) : null;
     // Of two layers of one run each may be the other's nearest: they are told of once.
     const pair = other ? [one.layer.id, other.layer.id].sort().join(' ') : '';
     if (!other || !agreement || seen.has(pair)) return [];
@@ -82,7 +81,7 @@ async function steadyGround({ chosen, all, smoothingM }: MeasuredLayers, ground:
   const once = series.filter(({ seasons }, at) => seasons.length >= 2 && series.findIndex((other) => idsOf(other.seasons) === idsOf(seasons)) === at);
   const found = await Promise.all(once.map(async ({ one, seasons }) => {
     const { id, type, name } = one.layer;
-    const input: StableGroundInput = { grid: gridOf(ground), seasons: seasons.map(({ placed }) => decodeFloatCells(placed.cells)), smoothingM: layerType(type).showsRows ? smoothingM : 0 };
+    const input: StableGroundInput = { grid: gridOf(ground), seasons: seasons.map(({ layer, placed }) => storedCells(layer, placed)), smoothingM: layerType(type).showsRows ? smoothingM : 0 };
     const stable = await runCompute<StableGround | null>('stableGround', input, { lane: 'quick' });
     if (stable === null) return [];
     const { steady, moving, chance, areas } = stable;

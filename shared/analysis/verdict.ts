@@ -24,6 +24,7 @@ export type VerdictReasonCode =
   | 'too-small'
   | 'not-tested-on-fruit'
   | 'few-readings'
+  | 'readings-in-one-zone'
   | 'fruit-agrees'
   | 'fruit-silent'
   | 'fruit-unclear'

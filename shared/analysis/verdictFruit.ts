@@ -13,7 +13,7 @@ export interface MeasureReadings {
 }
 
 export interface FruitCheck {
-  readonly state: 'untested' | 'few' | 'agrees' | 'unclear' | 'disagrees';
+  readonly state: 'untested' | 'inOneZone' | 'few' | 'agrees' | 'unclear' | 'disagrees';
   readonly tests: readonly (ReadingsTest & { readonly measure: string })[];
 }
 
@@ -27,7 +27,7 @@ export function checkOnFruit(measures: readonly MeasureReadings[], random: Rando
   const tests = measures
     .filter(({ readings }) => new Set(readings.map(({ zone }) => zone)).size > 1)
     .map(({ measure, readings }) => ({ measure, ...testOnReadings(readings, random) }));
-  if (tests.length === 0) return { state: 'untested', tests };
+  if (tests.length === 0) return { state: measures.some(({ readings }) => readings.length > 0) ? 'inOneZone' : 'untested', tests };
   const enough = tests.filter(({ n }) => n >= LEAST_READINGS);
   if (enough.length === 0) return { state: 'few', tests };
   const p = Math.min(1, Math.min(...enough.map((test) => test.p)) * enough.length);
@@ -36,7 +36,7 @@ export function checkOnFruit(measures: readonly MeasureReadings[], random: Rando
 
 /** Adds what the fruit says to the reasons, for each measure with readings enough, and takes "several" back when it disagrees. */
 export function withFruit(result: VerdictResult, { state, tests }: FruitCheck): VerdictResult {
-  const codes = { untested: 'not-tested-on-fruit', few: 'few-readings', agrees: 'fruit-agrees', unclear: 'fruit-unclear', disagrees: 'fruit-disagrees' } as const;
+  const codes = { untested: 'not-tested-on-fruit', inOneZone: 'readings-in-one-zone', few: 'few-readings', agrees: 'fruit-agrees', unclear: 'fruit-unclear', disagrees: 'fruit-disagrees' } as const;
   const asked = state === 'few' ? tests : tests.filter(({ n }) => n >= LEAST_READINGS);
   // Where one measure agrees the others need not: a picker must know whether it is the sugar.
   const codeOf = ({ p }: ReadingsTest) => (state === 'agrees' && p * asked.length > AGREES_BELOW ? 'fruit-silent' : codes[state]);

@@ -31,7 +31,7 @@ import { stackBlocks, type BlockPart, type StackedBlocks } from './zoningTogethe
 import type { BlockInput, StageMark, ZoningInput, ZoningOptions, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '12';
+export const ENGINE_VERSION = '13';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;
@@ -98,7 +98,7 @@ export function zonesOfEveryNumber({ options, stacked: { grid }, prepared: { lay
   mark('clusters', 0.7);
   const quality = rateFits(table, fits, options.seed);
   mark('quality', 0.8);
-  const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, narrowestM: options.narrowestM, orderBy: layers[0]!.cells }));
+  const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, narrowestM: options.narrowestM, orderBy: layers[weights.findIndex((weight) => weight > 0)]!.cells }));
   mark('clean-up', 0.85);
   return { table, quality, cleaned };
 }
@@ -122,7 +122,9 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     shownBy: (ground) => zonesThatShow(ground, stacked.grid, workable.map((k) => ({ k, labels: cleaned[k - 1]!.labels }))),
   });
   const isApart = verdict.reasons.some(({ code }) => code === 'stands-out-apart');
-  const advisedK = verdict.verdict === 'one' || isApart ? 1 : count.best;
+  // Zones that clean-up joins to one are none, whatever the layers show: the number advised is one that can be had.
+  const isWorkable = workable.length > 0;
+  const advisedK = verdict.verdict === 'one' || isApart || !isWorkable ? 1 : count.best;
   const chosenK = options.zones === 'advise' ? advisedK : options.zones;
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
@@ -150,7 +152,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     evidence: evidenceRows(quality, { curve: evidence.curve, scores: count.scores }, candidates),
     candidates,
     componentShares: table.componentShares,
-    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, leftInAll: cellsPerLabel(cleaned[chosenK - 1]!.labels).reduce((count, cells, zone) => count + Number(zone > 0 && cells > 0), 0), advisedK, table, againstGround: followed[chosenK - 1]!.againstGround })],
+    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, leftInAll: cellsPerLabel(cleaned[chosenK - 1]!.labels).reduce((count, cells, zone) => count + Number(zone > 0 && cells > 0), 0), advisedK, noneWorkable: !isWorkable && verdict.verdict !== 'one', table, againstGround: followed[chosenK - 1]!.againstGround })],
   };
 }
 

@@ -1,5 +1,5 @@
 /**
- * From raw zones to zones a person can work: numbered by the first layer, single cells smoothed away, patches below the
+ * From raw zones to zones a person can work: numbered by one layer, single cells smoothed away, patches below the
  * smallest joined to a neighbour. Cost: some ten reads a cell.
  */
 

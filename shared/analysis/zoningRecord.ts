@@ -38,16 +38,19 @@ export interface WarningInput {
   /** Zones that clean-up left in all blocks together; one may lack some that another has. */
   readonly leftInAll: number;
   readonly advisedK: number;
+  /** More than one zone would be worth it, and no number of them survives clean-up. */
+  readonly noneWorkable: boolean;
   readonly table: FeatureTable;
   /** Vines that borders along the rows put into another zone than their ground, as a share; null where borders are free. */
   readonly againstGround: number | null;
 }
 
 /** Things about the result that a person should know before using it. */
-export function resultWarnings({ chosen, leftInAll, advisedK, table, againstGround }: WarningInput): ZoningWarning[] {
+export function resultWarnings({ chosen, leftInAll, advisedK, noneWorkable, table, againstGround }: WarningInput): ZoningWarning[] {
   const warnings: ZoningWarning[] = [];
   const inside = table.cells.length + table.incomplete.length;
   if (table.incomplete.length > 0) warnings.push({ code: 'cells-filled', about: null, figures: { cells: table.incomplete.length, share: table.incomplete.length / inside } });
+  if (noneWorkable) warnings.push({ code: 'none-workable', about: null, figures: {} });
   if (leftInAll < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: leftInAll } });
   if (chosen.zones.length < leftInAll) warnings.push({ code: 'zone-elsewhere', about: null, figures: { wanted: leftInAll, left: chosen.zones.length } });
   if (chosen.k !== advisedK) warnings.push({ code: 'number-fixed', about: null, figures: { chosen: chosen.k, advised: advisedK } });

@@ -93,7 +93,7 @@ export interface Zone {
 
 export interface ZoningCandidate {
   readonly k: number;
-  /** 1…k by rising mean of the first layer, 0 outside. A zone that clean-up removed leaves no number free. */
+  /** 1…k by rising mean of the first layer that has a weight, 0 outside. A zone that clean-up removed leaves no number free. */
   readonly labels: Labels;
   readonly zones: readonly Zone[];
   /** 0 (clear) … 1 (as near to another zone) per cell, NaN outside. */
@@ -136,7 +136,7 @@ export interface ZoneEvidence {
 }
 
 export interface ZoningWarning {
-  readonly code: 'layer-constant' | 'layer-coverage' | 'zone-vanished' | 'zone-elsewhere' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
+  readonly code: 'layer-constant' | 'layer-coverage' | 'none-workable' | 'zone-vanished' | 'zone-elsewhere' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
   readonly about: string | null;
   readonly figures: Readonly<Record<string, number>>;
 }

@@ -19,7 +19,13 @@ export const zoningOptions = z.object({
 });
 export type ZoningRequestOptions = z.infer<typeof zoningOptions>;
 
-export const newZoning = zoningOptions.extend({ /** Left out, it is what suits the block. */ smallestPatchHa: zoningOptions.shape.smallestPatchHa.unwrap().optional(), name: z.string().trim().max(80).default(''), seed: z.number().int().min(0).max(4_294_967_295).default(1) });
+export const newZoning = zoningOptions.extend({
+  layers: zoningOptions.shape.layers.refine((layers) => layers.length === 0 || layers.some(({ weight: given }) => given !== 0), 'Every layer has weight 0; give at least one a weight above it.'),
+  /** Left out, it is what suits the block. */
+  smallestPatchHa: zoningOptions.shape.smallestPatchHa.unwrap().optional(),
+  name: z.string().trim().max(80).default(''),
+  seed: z.number().int().min(0).max(4_294_967_295).default(1),
+});
 export type NewZoning = z.infer<typeof newZoning>;
 
 export const zoningStates = ['running', 'proposed', 'draft', 'live', 'retired', 'failed'] as const;

@@ -136,6 +136,7 @@ describe('a zoning', () => {
       [{ layers: [] }, /at least one layer/],
       [{ layers: [{ layerId: plot.layerId }, { layerId: plot.layerId }] }, /chosen twice/],
       [{ layers: [{ layerId: plot.blockId }] }, /do not lie on/],
+      [{ layers: [{ layerId: plot.layerId, weight: 0 }] }, /^layers: Every layer has weight 0; give at least one/],
       [recipe({ zones: 7 }), /zones/],
       [recipe({ smoothingM: -1 }), /smoothingM/],
       [recipe({ seed: 1.5 }), /seed/],
@@ -143,6 +144,20 @@ describe('a zoning', () => {
       const answer = await ask(body);
       expect([answer.status, answer.body.detail]).toEqual([422, expect.stringMatching(words)]);
     }
+  });
+
+  it('is not begun where advice leaves out all that a person did not', async () => {
+    const { id } = await Layer.query().insert({ ...(await Layer.query().findById(plot.layerId).throwIfNotFound()), id: randomUUID(), name: 'Hill', type: 'elevation' });
+    const placed = await BlockLayer.query().findOne({ layerId: plot.layerId, blockId: plot.blockId }).throwIfNotFound();
+    await BlockLayer.query().insert({ ...placed, id: randomUUID(), layerId: id });
+    const ask = (...weights: (number | null)[]) => agronomist.post(`${base()}/blocks/${plot.blockId}/zonings`, { layers: [plot.layerId, id].map((layerId, at) => ({ layerId, weight: weights[at]! })) });
+    const before = await Zoning.query().where({ blockId: plot.blockId }).resultSize();
+    const refused = await ask(0, null);
+    expect([refused.status, refused.body.code, refused.body.detail]).toEqual([422, 'noWeight', expect.stringMatching(/Give at least one a weight above 0/)]);
+    expect(await Zoning.query().where({ blockId: plot.blockId }).resultSize()).toBe(before);
+    expect((await ask(0, 1)).status).toBe(202);
+    expect((await ask(null, null)).status).toBe(202);
+    await Layer.query().findById(id).patch({ retiredAt: new Date() });
   });
 
   it('may be repeated by the manager as it was, and not with other weights', async () => {
@@ -284,7 +299,7 @@ describe('a zoning that does not come to its end', () => {
       await runner.stop();
       await BlockLayer.query().findById(here.id).patch({ cells: here.cells });
     }
-    expect(await view(zoningId)).toMatchObject({ isStopped: false, problem: expect.stringMatching(/cells cannot be read.*Import the layer again/) });
+    expect(await view(zoningId)).toMatchObject({ isStopped: false, problem: expect.stringMatching(/^The stored values of layer ".+" cannot be read\. Import its file again/) });
     await expectNothing(zoningId);
   });
 

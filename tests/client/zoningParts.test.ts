@@ -33,6 +33,15 @@ describe('what to zone from', () => {
     form.unmount();
   });
 
+  it('does not run with no layer that votes, and says so before it is sent', async () => {
+    const weighted = (weight: number) => ({ layers: [{ layerId: 'Flight 2026', weight: 0 }, { layerId: 'Height', weight }], withBlocks: [] }) as unknown as ZoningRequestOptions;
+    for (const [weight, isOff] of [[0, true], [0.5, false]] as const) {
+      const form = await mountWithTexts(ZoningForm, { props: { layers, before: weighted(weight) } });
+      expect(form.text().includes('Every layer has weight 0')).toBe(isOff);
+      form.unmount();
+    }
+  });
+
   it('says of a block without layers that there are none', async () => {
     const form = await mountWithTexts(ZoningForm, { props: { layers: [] }, slots: { none: () => 'the way to them' } });
     expect(form.text()).toContain('No layer lies on this block yet.');

@@ -292,5 +292,12 @@ describe('readings of fruit', () => {
     expect(untested).toMatchObject({ verdict: 'several' });
     expect(untested.reasons.map(({ code }) => code)).toContain('not-tested-on-fruit');
     expect(checkOnFruit([{ measure: 'brix', readings: vines(2, 1).slice(0, 20) }], seededRandom(1)).state).toBe('few');
+    expect(checkOnFruit([{ measure: 'brix', readings: [] }], seededRandom(1)).state).toBe('untested');
+  });
+
+  it('of one zone alone test nothing, and nobody says that there are none', () => {
+    const inOne = checkOnFruit([{ measure: 'brix', readings: vines(2, 1).filter(({ zone }) => zone === 1) }], seededRandom(1));
+    const result = judge({ areaM2: 20_000, layerIds: [], structures: [], curve: [] });
+    expect(withFruit(result, inOne).reasons.map(({ code }) => code)).toEqual(['no-measured-layer', 'readings-in-one-zone']);
   });
 });

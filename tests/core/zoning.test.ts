@@ -184,6 +184,15 @@ describe('layers and weights in a zoning', () => {
     expect(withWild.candidates[2]!.zones[0]!.layers.map(({ layerId }) => layerId)).toEqual(['vigour', 'conductivity', 'elevation']);
   });
 
+  it('numbers zones by the first layer that has a weight, whatever stands before it', () => {
+    const against = layer('elevation', conductivity.cells.map((value) => -value), { role: 'context' });
+    for (const first of [against, { ...layer('other', against.cells), weight: 0 }]) {
+      const { zones } = makeZoning({ ...input, layers: [first, conductivity, vigour] }).candidates[2]!;
+      const means = zones.map((zone) => zone.layers[1]!.mean!);
+      expect(means).toEqual([...means].sort((a, b) => a - b));
+    }
+  });
+
   it('takes the person’s weights over the advised ones', () => {
     const soil = layer('soil', Float32Array.from(block.truth, (zone) => (zone === 0 ? NaN : zone)), { role: 'context', kind: 'class', weight: 4 });
     const chosen = makeZoning({ ...input, layers: [vigour, { ...conductivity, weight: 0 }, soil] });
@@ -236,6 +245,14 @@ describe('the verdict of a zoning', () => {
     const layers = [layer('vigour', noise.vigour), layer('conductivity', noise.conductivity)];
     expect(makeZoning({ grid: noise.grid, layers })).toMatchObject({ verdict: { verdict: 'one' }, advisedK: 1, chosenK: 1 });
     expect(makeZoning({ grid: noise.grid, layers, options: { zones: 4 } })).toMatchObject({ verdict: { verdict: 'one' }, advisedK: 1, chosenK: 4 });
+  });
+
+  it('advises no number that cannot be had, and says why it is one', () => {
+    const wide = makeZoning({ ...input, options: { ...input.options, smallestPatchHa: 1.5 } });
+    expect(wide).toMatchObject({ verdict: { verdict: 'several' }, advisedK: 1, chosenK: 1 });
+    expect(wide.warnings.map(({ code }) => code)).toEqual(['none-workable']);
+    expect(makeZoning({ ...input, options: { ...input.options, smallestPatchHa: 1.5, zones: 2 } }).warnings.map(({ code }) => code)).toEqual(['none-workable', 'zone-vanished', 'number-fixed']);
+    expect(result.warnings).toEqual([]);
   });
 
   it('has no measured layer to go by when only terrain is given', () => {

@@ -21,6 +21,7 @@ export const es: Record<string, string> = {
   'Each person once.': 'Cada persona una sola vez.',
   'Each plan once.': 'Cada plan una sola vez.',
   'Each zone can be in one pool only.': 'Cada zona puede estar en un solo grupo.',
+  'Every layer has weight 0; give at least one a weight above it.': 'Todas las capas tienen peso 0; dé al menos a una un peso mayor.',
   'Give a name.': 'Indique un nombre.',
   'Give a time such as 06:00.': 'Indique una hora, como 06:00.',
   'Give a unit.': 'Indique una unidad.',

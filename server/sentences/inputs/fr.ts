@@ -21,6 +21,7 @@ export const fr: Record<string, string> = {
   'Each person once.': 'Chaque personne une seule fois.',
   'Each plan once.': 'Chaque plan une seule fois.',
   'Each zone can be in one pool only.': 'Chaque zone ne peut être que dans un seul groupe.',
+  'Every layer has weight 0; give at least one a weight above it.': 'Toutes les couches ont le poids 0 ; donnez à au moins une un poids plus grand.',
   'Give a name.': 'Donnez un nom.',
   'Give a time such as 06:00.': 'Donnez une heure, par exemple 06:00.',
   'Give a unit.': 'Donnez une unité.',

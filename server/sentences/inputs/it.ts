@@ -21,6 +21,7 @@ export const it: Record<string, string> = {
   'Each person once.': 'Ogni persona una volta sola.',
   'Each plan once.': 'Ogni piano una volta sola.',
   'Each zone can be in one pool only.': 'Ogni zona può stare in un solo gruppo.',
+  'Every layer has weight 0; give at least one a weight above it.': 'Tutti gli strati hanno peso 0; dia ad almeno uno un peso superiore.',
   'Give a name.': 'Dia un nome.',
   'Give a time such as 06:00.': 'Dia un’ora, per esempio 06:00.',
   'Give a unit.': 'Dia un’unità.',

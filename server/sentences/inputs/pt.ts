@@ -21,6 +21,7 @@ export const pt: Record<string, string> = {
   'Each person once.': 'Cada pessoa só uma vez.',
   'Each plan once.': 'Cada plano só uma vez.',
   'Each zone can be in one pool only.': 'Cada zona só pode estar num grupo.',
+  'Every layer has weight 0; give at least one a weight above it.': 'Todas as camadas têm peso 0; dê a pelo menos uma um peso maior.',
   'Give a name.': 'Indique um nome.',
   'Give a time such as 06:00.': 'Indique uma hora, como 06:00.',
   'Give a unit.': 'Indique uma unidade.',

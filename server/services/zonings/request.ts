@@ -1,5 +1,6 @@
 import type { Transaction } from 'objection';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
+import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import { zoningOptions, type NewZoning, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
 import { ENGINE_VERSION } from '../../../shared/analysis/zoning.ts';
 import { smallestPatchFor } from '../../../shared/analysis/smallestPatch.ts';
@@ -9,6 +10,7 @@ import { loadBlockLayers } from '../../ground/zoneLayers.ts';
 import { enqueueJob } from '../../jobs/queue.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
+import type { Layer } from '../../models/Layer.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { readinessOf } from '../layers/view.ts';
 import { say } from '../../sentences/say.ts';
@@ -31,7 +33,7 @@ export async function requestZoning(access: Access, blockId: string, input: NewZ
   const blocks = await Promise.all(all.map((id) => Block.query().findOne({ estateId: access.estateId, id }).whereNull('retiredAt').throwIfNotFound()));
   const options = zoningOptions.parse({ ...input, withBlocks, smallestPatchHa: input.smallestPatchHa ?? smallestPatchFor(blocks[0]!.areaM2) });
   if (reachOf(access.roles, 'zoning.run') !== 'do') await requireKnownRecipe(access, blockId, options);
-  for (const block of blocks) await requireUsableLayers(access, block, options.layers.map(({ layerId }) => layerId));
+  for (const block of blocks) await requireUsableLayers(access, block, options);
   const season = await seasonOn(access.estateId, today);
   return Zoning.transaction(async (trx) => {
     const made: (Asked & { blockId: string })[] = [];
@@ -63,10 +65,19 @@ async function requireKnownRecipe(access: Access, blockId: string, options: Retu
   if (!isKnown) throw new NotAllowed(say('onlyAsItWas'));
 }
 
+/** Advice leaves context out beside a measured layer, also beside one that a person gave no weight: nothing would be left to zone from. */
+function requireVoice(layers: readonly Layer[], weights: ReadonlyMap<string, number | null>): void {
+  const measured = layers.filter(({ type }) => layerType(type).role === 'evidence' && layerType(type).resampling !== 'class');
+  const votes = (layer: Layer) => (weights.get(layer.id) ?? Number(measured.length === 0 || measured.includes(layer))) > 0;
+  if (!layers.some(votes)) throw new Unusable('noWeight', say('noWeight'));
+}
+
 /** A layer with red findings keeps out of zoning unless somebody answers for it by name. */
-async function requireUsableLayers(access: Access, block: Block, layerIds: string[]): Promise<void> {
+async function requireUsableLayers(access: Access, block: Block, options: ZoningRequestOptions): Promise<void> {
+  const layerIds = options.layers.map(({ layerId }) => layerId);
   const found = await loadBlockLayers(access.estateId, block.id, layerIds);
   if (found.length < new Set(layerIds).size) throw new Unusable('layerMissing', say('layerMissing', { block: block.name }));
+  requireVoice(found.map(({ layer }) => layer), new Map(options.layers.map(({ layerId, weight }) => [layerId, weight])));
   for (const { layer, placed } of found) {
     const readiness = readinessOf(placed, block.gridKey);
     if (readiness === 'stale') throw new Clash('layerStale', say('layerOutOfDate', { layer: layer.name, block: block.name }));

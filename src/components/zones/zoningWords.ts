@@ -19,7 +19,7 @@ export function verdictWords(zoning: ZoningView, { t, format }: { t: Translate; 
   const answer = !zoning.isJudged ? t('zones.verdict.notJudged') : t(`zones.verdict.${zoning.verdict ?? 'test'}`, { zones: t(`zones.inWords.${count}`) }, count);
   const codes = new Set(zoning.reasons.map((reason) => reason.code));
   const first = ['no-measured-layer', 'stands-out', 'stands-out-apart', 'no-structure', 'plateaus', 'slope-only'].find((code) => codes.has(code));
-  const fruit = ['fruit-agrees', 'fruit-disagrees', 'fruit-unclear', 'few-readings', 'not-tested-on-fruit'].find((code) => codes.has(code));
+  const fruit = ['fruit-agrees', 'fruit-disagrees', 'fruit-unclear', 'few-readings', 'readings-in-one-zone', 'not-tested-on-fruit'].find((code) => codes.has(code));
   const silent = codes.has('fruit-silent') ? 'fruit-silent' : undefined;
   const sentences = [first, fruit, silent].flatMap((code) => (code ? [reasonWords(zoning, code, { t, format })] : []));
   const also = ['too-small', 'stripes-evened', 'one-layer'].filter((code) => codes.has(code)).map((code) => reasonWords(zoning, code, { t, format }));

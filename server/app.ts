@@ -1,7 +1,7 @@
 import { constants } from 'node:zlib';
 import compression from 'compression';
 import connectPgSimple from 'connect-pg-simple';
-import express, { Router, type ErrorRequestHandler, type Express, type Request } from 'express';
+import express, { Router, type ErrorRequestHandler, type Express } from 'express';
 import session from 'express-session';
 import helmet from 'helmet';
 import { existsSync } from 'node:fs';
@@ -9,6 +9,7 @@ import { join } from 'node:path';
 import type pg from 'pg';
 import { makeCsrf } from './access/csrf.ts';
 import { estateGuard } from './access/guard.ts';
+import { linkAddress } from './access/linkAddress.ts';
 import { makePassport } from './access/signIn.ts';
 import { storableRequest } from './access/storableRequest.ts';
 import type { Config } from './config.ts';
@@ -100,7 +101,7 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
   api.use(csrf.protect);
   api.get('/openapi.json', (_request, response) => void response.json(describedApi()));
   api.use(sessionRoutes({ passport, csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
-  api.use(accountRoutes({ demo: config.demo, signInTries: config.signInTries, trustedUrl: (request) => trustedUrl(config, request) }));
+  api.use(accountRoutes({ demo: config.demo, signInTries: config.signInTries, links: linkAddress(config) }));
   api.use(crewDoorRoutes({ csrfToken: csrf.token, demo: config.demo, signInTries: config.signInTries }));
   api.use(estateListRoutes());
   api.use(formatRoutes());
@@ -114,10 +115,10 @@ function makeApi(config: Config, sessionPool: pg.Pool): Router {
 
 function makeEstateApi(config: Config): Router {
   const router = Router({ mergeParams: true });
-  const publicUrl = (host: string) => config.publicUrl || `http://${host}`;
+  const links = linkAddress(config);
   router.use(
     estateRoutes(),
-    peopleRoutes({ publicUrl }),
+    peopleRoutes({ links }),
     recordRoutes(),
     jobRoutes(),
     blockRoutes(),
@@ -129,20 +130,11 @@ function makeEstateApi(config: Config): Router {
     lotRoutes(),
     zoningRoutes(),
   );
-  router.use(planRoutes(), roundRoutes({ publicUrl }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }), earlierRoutes({ receive: receiveFiles(labFileBytes) }));
+  router.use(planRoutes(), roundRoutes({ links }), bagRoutes(), labRoutes({ receive: receiveFiles(labFileBytes) }), earlierRoutes({ receive: receiveFiles(labFileBytes) }));
   router.use(crewRoutes(), fieldPhotoRoutes({ receive: receiveFiles(Math.min(config.uploadLimitBytes, photoLimitBytes)) }));
-  router.use(harvestRoutes({ publicUrl }), weatherRoutes());
+  router.use(harvestRoutes({ links }), weatherRoutes());
   router.use(todayRoutes(), searchRoutes());
   return router;
-}
-
-const ownMachine = /^(localhost|127(\.\d+){3}|\[::1\])(:\d+)?$/;
-
-/** Address for links that open an account. What a request calls this server is believed only on the machine itself: elsewhere it could be forged to catch the link. */
-function trustedUrl(config: Config, request: Request): string | null {
-  if (config.publicUrl !== '') return config.publicUrl;
-  const host = request.get('host') ?? '';
-  return ownMachine.test(host) ? `http://${host}` : null;
 }
 
 function securityHeaders(config: Config) {

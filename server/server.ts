@@ -35,6 +35,7 @@ async function main(): Promise<void> {
   const server = createServer(makeApp(config, { isReady, sessionPool, clientFolder: clientFolder() }));
   await listen(server, config.port, config.host);
   log.info('listening', { address: `http://${config.host}:${portOf(server)}` });
+  if (config.publicUrl === '' && (config.trustProxy > 0 || !['127.0.0.1', 'localhost', '::1'].includes(config.host))) log.info('PUBLIC_URL is not set', { means: 'mails carry links within the own network only, and none to set a new password' });
 
   const stop = async () => {
     clearInterval(mailTimer);

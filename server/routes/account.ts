@@ -1,6 +1,7 @@
-import { Router, type Request } from 'express';
+import { Router } from 'express';
 import { passwordChange, resetAnswer, resetRequest } from '../../shared/contracts/account.ts';
 import { signedIn } from '../access/guard.ts';
+import type { LinkAddress } from '../access/linkAddress.ts';
 import { limitTries } from '../access/tries.ts';
 import { log } from '../log.ts';
 import { changePassword } from '../services/account/changePassword.ts';
@@ -10,8 +11,7 @@ import { askForReset, readReset, useReset } from '../services/account/resetPassw
 interface Options {
   demo: boolean;
   signInTries: number;
-  /** Address for links in mails, or null where the request's own word for it cannot be trusted. */
-  trustedUrl: (request: Request) => string | null;
+  links: LinkAddress;
 }
 
 /** A known address costs a few writes more than an unknown one: both wait until this time has passed. */
@@ -40,7 +40,7 @@ export function accountRoutes(options: Options): Router {
 
   router.post('/password-resets', asked, async (request, response) => {
     const { email } = resetRequest.parse(request.body);
-    const publicUrl = options.trustedUrl(request);
+    const publicUrl = options.links.forAccount(request);
     const wait = new Promise((resolve) => setTimeout(resolve, askFloorMs));
     if (publicUrl === null) log.error('no link for a new password was written', new Error('PUBLIC_URL is needed for links in mails'));
     else await askForReset(email, { publicUrl, allowDemo: options.demo, now: new Date() });

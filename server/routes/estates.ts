@@ -1,7 +1,7 @@
 import { Router } from 'express';
 import { estateChange, newEstate, seasonChange } from '../../shared/contracts/estate.ts';
 import { accessOf, allow, idParam, signedIn } from '../access/guard.ts';
-import { changeEstate, changeSeason, createEstate, readEstateFacts } from '../services/estates.ts';
+import { changeEstate, changeSeason, createAnother, readEstateFacts } from '../services/estates.ts';
 import { describeSession } from '../services/sessions.ts';
 
 /** Estates a person belongs to, and a new one of their own. */
@@ -12,7 +12,7 @@ export function estateListRoutes(): Router {
     response.json({ items: estates, total: estates.length });
   });
   router.post('/estates', async (request, response) => {
-    const id = await createEstate(signedIn(request), newEstate.parse(request.body), today());
+    const id = await createAnother(signedIn(request), newEstate.parse(request.body), today());
     response.status(201).json({ id });
   });
   return router;

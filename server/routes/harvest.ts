@@ -4,6 +4,7 @@ import { factorSwitch, newCellarResult } from '../../shared/contracts/factors.ts
 import { newTicket, ticketFile } from '../../shared/contracts/tickets.ts';
 import { knownOn, letterPaper } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import type { LinkAddress } from '../access/linkAddress.ts';
 import { enterCellarResult, listCellarResults, listFactors, switchFactor } from '../services/lots/cellar.ts';
 import { listNotices, noticePeople, noticeState, printNotice, readNotice, sendNotice } from '../services/lots/notices.ts';
 import { seasonLetter } from '../services/lots/letter.ts';
@@ -25,7 +26,7 @@ export function noticeStateRoutes(): Router {
 }
 
 /** Pick notices, scale tickets and the season's review. Notices and tickets are never changed, only replaced. */
-export function harvestRoutes(options: { publicUrl: (host: string) => string }): Router {
+export function harvestRoutes(options: { links: LinkAddress }): Router {
   const router = Router({ mergeParams: true });
 
   router.get('/notices', allow('notices.acknowledge'), async (request, response) => {
@@ -38,12 +39,12 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
     response.json({ items, total: items.length });
   });
   router.post('/lots/:lotId/reopen', allow('lots.confirm'), async (request, response) => {
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forMail(request);
     await reopenLot(accessOf(request), idParam(request, 'lotId'), versionMatched(request), { publicUrl, now: new Date() });
     response.status(204).end();
   });
   router.post('/lots/:lotId/notices', allow('notices.send'), async (request, response) => {
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forMail(request);
     response.status(201).json(await sendNotice(accessOf(request), idParam(request, 'lotId'), newNotice.parse(request.body), { publicUrl, now: new Date() }));
   });
   router.post('/notices/:noticeId/read', allow('notices.acknowledge'), async (request, response) => {
@@ -51,7 +52,7 @@ export function harvestRoutes(options: { publicUrl: (host: string) => string }):
     response.status(204).end();
   });
   router.get('/notices/:noticeId/sheet', allow('notices.acknowledge'), async (request, response) => {
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forPaper(request);
     const { name, body } = await printNotice(accessOf(request), idParam(request, 'noticeId'), { publicUrl, now: new Date() });
     response.type('application/pdf').attachment(name).send(body);
   });

@@ -1,11 +1,12 @@
 import { Router } from 'express';
 import { newInvitation, rolesChange } from '../../shared/contracts/people.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import type { LinkAddress } from '../access/linkAddress.ts';
 import { invite, listInvitations, resendInvitation, revokeInvitation } from '../services/people/invitations.ts';
 import { changeRoles, listPeople } from '../services/people/people.ts';
 
 /** People of the estate, their roles, and invitations. */
-export function peopleRoutes(options: { publicUrl: (host: string) => string }): Router {
+export function peopleRoutes(options: { links: LinkAddress }): Router {
   const router = Router({ mergeParams: true });
   router.get('/people', allow('people.see', 'read'), async (request, response) => {
     const items = await listPeople(accessOf(request), new Date().toISOString().slice(0, 10));
@@ -20,11 +21,11 @@ export function peopleRoutes(options: { publicUrl: (host: string) => string }): 
     response.json({ items, total: items.length });
   });
   router.post('/invitations', allow('people.manage', 'propose'), async (request, response) => {
-    const made = await invite(accessOf(request), newInvitation.parse(request.body), { publicUrl: options.publicUrl(request.get('host') ?? 'localhost'), now: new Date() });
+    const made = await invite(accessOf(request), newInvitation.parse(request.body), { publicUrl: options.links.forMail(request), now: new Date() });
     response.status(201).json(made);
   });
   router.post('/invitations/:invitationId/resend', allow('people.manage', 'propose'), async (request, response) => {
-    await resendInvitation(accessOf(request), idParam(request, 'invitationId'), { publicUrl: options.publicUrl(request.get('host') ?? 'localhost'), now: new Date() });
+    await resendInvitation(accessOf(request), idParam(request, 'invitationId'), { publicUrl: options.links.forMail(request), now: new Date() });
     response.status(204).end();
   });
   router.delete('/invitations/:invitationId', allow('people.manage', 'propose'), async (request, response) => {

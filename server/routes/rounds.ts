@@ -3,6 +3,7 @@ import { newDay, newRound, roundChange } from '../../shared/contracts/rounds.ts'
 import { requireReach } from '../access/access.ts';
 import { blankLabels, crewSheet, daySheet, ofBlockOrPlan, roundLabels, whoseWalk } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
+import type { LinkAddress } from '../access/linkAddress.ts';
 import { acknowledgeRound, changeRound } from '../services/rounds/changeRound.ts';
 import { fieldRound } from '../services/rounds/fieldRound.ts';
 import { listRounds } from '../services/rounds/listRounds.ts';
@@ -13,16 +14,16 @@ import { printSheet } from '../services/rounds/printSheet.ts';
 import { sendDay } from '../services/rounds/sendDay.ts';
 
 /** Rounds: a plan's vines sent to people for a day. Crew see their own. */
-export function roundRoutes(options: { publicUrl: (host: string) => string }): Router {
+export function roundRoutes(options: { links: LinkAddress }): Router {
   const router = Router({ mergeParams: true });
   const own = allow('readings.record', 'own');
 
   router.post('/plans/day/rounds', allow('rounds.assign'), async (request, response) => {
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forMail(request);
     response.status(201).json(await sendDay(accessOf(request), newDay.parse(request.body), { publicUrl }));
   });
   router.post('/plans/:planId/rounds', allow('rounds.assign'), async (request, response) => {
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forMail(request);
     response.status(201).json(await makeRound(accessOf(request), idParam(request, 'planId'), newRound.parse(request.body), { publicUrl }));
   });
   router.get('/rounds/day-sheet', allow('sheets.print', 'own'), async (request, response) => {
@@ -50,7 +51,7 @@ export function roundRoutes(options: { publicUrl: (host: string) => string }): R
   });
   router.get('/rounds/:roundId/sheet', allow('sheets.print', 'own'), async (request, response) => {
     const { paper } = crewSheet.parse(request.query);
-    const publicUrl = options.publicUrl(request.get('host') ?? 'localhost');
+    const publicUrl = options.links.forPaper(request);
     const { name, body } = await printSheet(accessOf(request), idParam(request, 'roundId'), { paper, publicUrl, now: new Date() });
     response.set('content-type', 'application/pdf').attachment(name).send(body);
   });

@@ -217,6 +217,8 @@ export const en = {
   roleForbids: 'Your role in this estate does not allow this. Ask the owner who may.',
   nothingHere: 'Nothing is found at this address in this estate.',
   noVersion: 'Say which version this change was made on: send the ETag that you read as If-Match.',
+  noPublicUrl: 'The mail carries a link, and nobody has said by which address people reach this installation: set PUBLIC_URL where the server starts, for example PUBLIC_URL=https://vines.example. Nothing was sent or changed.',
+  ownersMakeEstates: 'Who owns an estate here can make another. Ask an owner, or whoever runs this installation: npm run owner makes the first.',
   takenAlready: 'This is taken already: {what}. Choose another.',
   stillUsed: 'Something that this refers to is not in this estate, or is still in use.',
   fileTooLarge: 'This file is larger than this server accepts. Cut it to the estate or ask for a higher limit.',

@@ -218,6 +218,8 @@ export const es: Record<SentenceKey, string> = {
   roleForbids: 'Su función en esta finca no lo permite. Pregunte al propietario quién puede.',
   nothingHere: 'En esta dirección no se encuentra nada de esta finca.',
   noVersion: 'Indique sobre qué versión se hizo este cambio: envíe como If-Match el ETag que leyó.',
+  noPublicUrl: 'El correo lleva un enlace y nadie ha dicho con qué dirección se llega a esta instalación: ponga PUBLIC_URL donde arranca el servidor, por ejemplo PUBLIC_URL=https://vines.example. No se ha enviado ni cambiado nada.',
+  ownersMakeEstates: 'Quien es propietario de una finca aquí puede crear otra. Pregunte a un propietario o a quien lleva esta instalación: npm run owner crea la primera.',
   takenAlready: 'Esto ya está en uso: {what}. Elija otro.',
   stillUsed: 'Algo a lo que esto se refiere no está en esta finca o aún se usa.',
   fileTooLarge: 'Este archivo es mayor de lo que admite este servidor. Recórtelo a la finca o pida un límite mayor.',

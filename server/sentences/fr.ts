@@ -218,6 +218,8 @@ export const fr: Record<SentenceKey, string> = {
   roleForbids: 'Votre rôle dans ce domaine ne le permet pas. Demandez au propriétaire qui le peut.',
   nothingHere: 'Rien ne se trouve à cette adresse dans ce domaine.',
   noVersion: 'Dites sur quelle version ce changement a été fait : envoyez en If-Match l’ETag que vous avez lu.',
+  noPublicUrl: 'Le courriel porte un lien et personne n’a dit par quelle adresse on atteint cette installation : réglez PUBLIC_URL là où le serveur démarre, par exemple PUBLIC_URL=https://vines.example. Rien n’a été envoyé ni modifié.',
+  ownersMakeEstates: 'Qui possède un domaine ici peut en créer un autre. Demandez à un propriétaire ou à qui gère cette installation : npm run owner crée le premier.',
   takenAlready: 'C’est déjà pris : {what}. Choisissez autre chose.',
   stillUsed: 'Un élément auquel ceci renvoie n’est pas dans ce domaine, ou sert encore.',
   fileTooLarge: 'Ce fichier est plus grand que ce serveur ne l’accepte. Coupez-le au domaine ou demandez une limite plus haute.',

@@ -218,6 +218,8 @@ export const it: Record<SentenceKey, string> = {
   roleForbids: 'Il suo ruolo in questa tenuta non lo permette. Chieda al titolare chi può farlo.',
   nothingHere: 'A questo indirizzo non si trova nulla in questa tenuta.',
   noVersion: 'Dica su quale versione è stata fatta questa modifica: invii come If-Match l’ETag letto.',
+  noPublicUrl: 'La mail porta un collegamento e nessuno ha detto a quale indirizzo si raggiunge questa installazione: imposti PUBLIC_URL dove si avvia il server, per esempio PUBLIC_URL=https://vines.example. Nulla è stato inviato o cambiato.',
+  ownersMakeEstates: 'Chi è titolare di una tenuta qui può crearne un’altra. Chieda a un titolare o a chi gestisce questa installazione: npm run owner crea la prima.',
   takenAlready: 'È già in uso: {what}. Scelga altro.',
   stillUsed: 'Qualcosa a cui questo rimanda non è in questa tenuta o è ancora in uso.',
   fileTooLarge: 'Questo file è più grande di quanto questo server accetti. Lo tagli alla tenuta o chieda un limite più alto.',

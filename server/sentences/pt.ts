@@ -218,6 +218,8 @@ export const pt: Record<SentenceKey, string> = {
   roleForbids: 'A sua função nesta quinta não o permite. Pergunte ao proprietário quem pode.',
   nothingHere: 'Neste endereço nada se encontra desta quinta.',
   noVersion: 'Indique sobre que versão foi feita esta alteração: envie como If-Match o ETag que leu.',
+  noPublicUrl: 'O correio leva uma ligação e ninguém disse por que endereço se chega a esta instalação: defina PUBLIC_URL onde o servidor arranca, por exemplo PUBLIC_URL=https://vines.example. Nada foi enviado nem alterado.',
+  ownersMakeEstates: 'Quem é proprietário de uma quinta aqui pode criar outra. Pergunte a um proprietário ou a quem gere esta instalação: npm run owner cria a primeira.',
   takenAlready: 'Isto já está em uso: {what}. Escolha outro.',
   stillUsed: 'Algo a que isto se refere não está nesta quinta ou ainda está em uso.',
   fileTooLarge: 'Este ficheiro é maior do que este servidor aceita. Recorte-o à quinta ou peça um limite maior.',

@@ -5,7 +5,7 @@ import { measures } from '../../shared/catalog/measures.ts';
 import { phaseProblem, startingPhases } from '../../shared/season/phases.ts';
 import { seasonAround } from '../../shared/season/seasonAround.ts';
 import type { Access } from '../access/access.ts';
-import { Clash, Unusable } from '../errors.ts';
+import { Clash, NotAllowed, Unusable } from '../errors.ts';
 import { estateDay } from '../ground/estateDay.ts';
 import { writeAudit } from '../models/AuditEntry.ts';
 import { BackupRecord } from '../models/BackupRecord.ts';
@@ -30,6 +30,13 @@ export async function createEstate(personId: string, input: NewEstate, today: st
     await writeAudit(trx, { estateId: estate.id, personId }, { action: 'estate.create', subjectType: 'estate', subjectId: estate.id, subjectName: input.name });
     return estate.id;
   });
+}
+
+/** The same for somebody who is signed in: whoever owns an estate here. The first of an installation is made where the server runs. */
+export async function createAnother(personId: string, input: NewEstate, today: string): Promise<string> {
+  const open = await Membership.query().where({ personId }).whereNull('endedAt').whereRaw('starts_on <= current_date and (ends_on is null or ends_on >= current_date)').select('role');
+  if (!may(open.map(({ role }) => role), 'estate.create')) throw new NotAllowed(say('ownersMakeEstates'));
+  return createEstate(personId, input, today);
 }
 
 /** The calendar day that it is at the estate. */

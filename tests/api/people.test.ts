@@ -23,6 +23,19 @@ async function inviteLink(email: string, role = 'agronomist'): Promise<string> {
   return /\/join\/(\S+)/.exec(mail.text)![1]!;
 }
 
+describe('another estate', () => {
+  it('is made by whoever owns one, and by nobody else', async () => {
+    for (const role of ['crew', 'lab', 'manager', 'agronomist', 'winemaker', 'admin'] as const) {
+      const { status, body } = await (await app.as((await app.addPerson(estate.estateId, role)).email)).post('/api/estates', { name: 'Mine' });
+      expect([role, status, body.code]).toEqual([role, 403, 'notAllowed']);
+    }
+    const another = await app.as((await app.addEstate('Near Bank')).ownerEmail);
+    const made = await another.post('/api/estates', { name: 'Far Bank' });
+    expect(made.status).toBe(201);
+    expect((await another.get(`/api/estates/${made.body.id}/people`)).status).toBe(200);
+  });
+});
+
 describe('inviting', () => {
   it('writes a mail that the owner can read, and its link opens the estate once', async () => {
     const token = await inviteLink('mara@new.example');

@@ -3,12 +3,14 @@
  * Per frequency a small matrix (power of each layer, shared power of each pair) and its Cholesky factor: white noise times
  * the factor, transformed, has the layers' covariances and cross-covariances. Multivariate circulant embedding (Chan & Wood
  * 1999) and phase-randomised surrogates of several series (Prichard & Theiler 1994), both from memory. Only the even part of
- * a cross-covariance is kept, so the matrices are real. Cost: two transforms for each layer and each pair of layers.
+ * a cross-covariance is kept, so the matrices are real. Covariances are taken from the variogram. Cost: four transforms for each
+ * layer and each pair of layers.
  */
 
 import { choleskyFactor } from './covarianceCholesky.ts';
+import { frequencyRings, withoutNegativePower } from './covarianceRings.ts';
 import { makeSound } from './covarianceSound.ts';
-import { lagSums, type LagSums, type MaskedPlane } from './covariance.ts';
+import { halfSquaredDifferences, lagSums, type LagSums, type MaskedPlane } from './covariance.ts';
 import type { PlaneTransform } from './covarianceFft.ts';
 
 /** Share of the cells that a lag must have as pairs for its covariance to be believed. */
@@ -27,19 +29,28 @@ export interface FieldRecipe {
 
 /** Layers must have mean 0 over the mask and be 0 outside. */
 export function fieldRecipe(plane: MaskedPlane, layers: readonly Float64Array[]): FieldRecipe {
-  const own = layers.map((layer) => lagSums(plane, layer));
+  const own = layers.map((layer) => variogramSums(plane, layer));
   const transform = own[0]!.transform;
   const size = transform.width * transform.height;
-  const power = own.map((sums) => spectrumOf(sums));
+  const rings = frequencyRings(transform, Math.sqrt(own[0]!.pairs[0]!));
+  const power = own.map((sums) => withoutNegativePower(spectrumOf(sums), rings));
   const scales = power.map((spectrum, layer) => Math.sqrt((varianceOf(own[layer]!) * size) / Math.max(1e-300, sumOfPositive(spectrum))));
   const shared = (a: number, b: number) => (a === b ? power[a]! : spectrumOf(evenCrossSums(plane, layers, { a, b, own })));
   const spectra = layers.map((_, a) => layers.slice(0, a + 1).map((__, b) => shared(a, b)));
   return factorised(transform, spectra, scales);
 }
 
+/** Sums of products by the variogram: pairs times variance, minus half the squared differences. */
+function variogramSums(plane: MaskedPlane, layer: Float64Array): LagSums {
+  const sums = lagSums(plane, layer);
+  const variance = sums.products[0]! / sums.pairs[0]!;
+  const half = halfSquaredDifferences(plane, layer, sums);
+  return { ...sums, products: half.map((square, lag) => sums.pairs[lag]! * variance - square) };
+}
+
 /** Both layers added have the sums of each plus twice the even part of the cross sums. */
 function evenCrossSums(plane: MaskedPlane, layers: readonly Float64Array[], { a, b, own }: { a: number; b: number; own: readonly LagSums[] }): LagSums {
-  const both = lagSums(plane, layers[a]!.map((value, cell) => value + layers[b]![cell]!));
+  const both = variogramSums(plane, layers[a]!.map((value, cell) => value + layers[b]![cell]!));
   const products = both.products.map((sum, lag) => (sum - own[a]!.products[lag]! - own[b]!.products[lag]!) / 2);
   return { transform: both.transform, products, pairs: both.pairs };
 }
@@ -76,7 +87,7 @@ function sumOfPositive(spectrum: Float64Array): number {
   return sum;
 }
 
-/** Negative power is set to 0, shared power held to what the two layers have, and the variances restored by `scales`. */
+/** Shared power is held to what the two layers have, negative power set to 0, and the variances restored by `scales`. */
 function factorised(transform: PlaneTransform, spectra: readonly (readonly Float64Array[])[], scales: readonly number[]): FieldRecipe {
   const layerCount = scales.length;
   const size = transform.width * transform.height;

@@ -56,8 +56,12 @@ const LEAST_SINGLE_STRUCTURE = 0.2;
 /** A gap of 0.5 leaves 40 % less within the zones than in fields without zones; small blocks need more to be believed. */
 const LEAST_GAP = 0.5;
 const LEAST_GAP_SMALL = 0.65;
-/** … and it must lie three standard deviations above what the random fields do among themselves, as control charts ask. */
-const LEAST_GAP_DEVIATIONS = 3;
+/**
+ * … and it must lie above what one more random field would reach in 99 % (prediction limit from 20: Student's t of 2.54 times √1.05), so
+ * that the five numbers tried pass together in at most 5 %. One layer has no second to steady it: three deviations, as control charts ask.
+ */
+const LEAST_GAP_DEVIATIONS = 2.6;
+const LEAST_GAP_DEVIATIONS_SINGLE = 3;
 export const SMALL_AREA_M2 = 10_000;
 
 export interface VerdictInput {
@@ -77,7 +81,7 @@ export function judge({ areaM2, layerIds, structures, curve, evenedIds = [] }: V
   const highestStructure = Math.max(...values);
   const best = curve.reduce((most, row) => (row.gap > most.gap ? row : most));
   const gapLimit = areaM2 < SMALL_AREA_M2 ? LEAST_GAP_SMALL : LEAST_GAP;
-  const hasPlateaus = best.gap >= gapLimit && best.gap >= LEAST_GAP_DEVIATIONS * best.gapSd;
+  const hasPlateaus = best.gap >= gapLimit && best.gap >= (values.length === 1 ? LEAST_GAP_DEVIATIONS_SINGLE : LEAST_GAP_DEVIATIONS) * best.gapSd;
   const isStriped = structures.some((layer) => layer.isStriped);
   const isSmooth = hasStructure(values, meanStructure, highestStructure);
   // Swaths have levels of their own, which look like plateaus; steps count against missing structure only without stripes.

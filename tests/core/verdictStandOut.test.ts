@@ -64,10 +64,12 @@ describe('a strip of five rows and a corner of a twenty-fifth', () => {
     expect(makeZoning({ grid, layers: layersOf(grid, truth, { levels: standOut(0), seed: 500 }), options: { seed: 500 } }).standsOut).toBeNull();
   });
 
-  it('say nothing where one sensor has them alone, as a swath would', () => {
+  it('say nothing where one sensor has them alone, as a swath would, in nine of ten blocks', () => {
     const { grid, truth } = strangeBlock(140, 140, { stripM: 17.5, cornerM: 0 });
-    const { verdict } = makeZoning({ grid, layers: layersOf(grid, truth, { levels: [[0, 0, -2.5, 0], [0, 0, 0, 0]], seed: 3 }) });
-    expect(verdict.verdict).toBe('one');
+    const seeds = Array.from({ length: 10 }, (_, seed) => seed);
+    const verdicts = seeds.map((seed) => makeZoning({ grid, layers: layersOf(grid, truth, { levels: [[0, 0, -2.5, 0], [0, 0, 0, 0]], seed }) }).verdict.verdict);
+    expect(verdicts.filter((verdict) => verdict === 'one').length).toBeGreaterThanOrEqual(9);
+    expect(verdicts).not.toContain('several');
   });
 });
 

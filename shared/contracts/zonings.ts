@@ -151,8 +151,11 @@ export const revisionOnly = z.object({ revision: z.number().int() });
 export const zoneEditLine = z.object({ sequence: z.number().int(), operation: z.unknown(), reason: z.string(), undone: z.boolean(), author: z.string().nullable(), at: z.string() });
 export type ZoneEditLine = z.infer<typeof zoneEditLine>;
 
-/** `replaces`: the version that was in force when the effects were read, null for none; left out, whatever is in force is replaced. */
-export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int(), replaces: z.number().int().nullable().optional() });
+/**
+ * `replaces`: the version that was in force when the effects were read, null for none; left out, whatever is in force is replaced.
+ * `callOff`: rounds under way in the block that are called off with it; the others go on as they are.
+ */
+export const publishRequest = z.object({ reason: z.string().trim().max(400).default(''), revision: z.number().int(), replaces: z.number().int().nullable().optional(), callOff: z.array(id).max(200).default([]) });
 
 /** What publishing would touch; a zone that only gets another number is in `renumbered`, and nothing of it counts as moved. */
 export const publishEffects = z.object({
@@ -161,7 +164,10 @@ export const publishEffects = z.object({
   readingsOutside: z.number().int(),
   vinesMoved: z.number().int(),
   renumbered: z.array(z.object({ from: zoneNumber, to: zoneNumber })),
-  openRounds: z.array(z.object({ id, onDate: z.string(), people: z.array(z.string()) })),
+  /** Rounds sent or under way, with their vines and how many of them have a reading. */
+  openRounds: z.array(z.object({ id, planId: id, onDate: z.string(), people: z.array(z.string()), vines: z.number().int(), done: z.number().int() })),
+  /** The new zones: vines, vines sampled this season, and further ones that rounds under way are to visit. */
+  byZone: z.array(z.object({ zone: zoneNumber, vines: z.number().int(), sampled: z.number().int(), toVisit: z.number().int() })),
   plans: z.array(z.object({ id, name: z.string(), isDraft: z.boolean(), vines: z.number().int(), vinesMoved: z.number().int() })),
   lots: z.array(z.object({ id, name: z.string(), isPicked: z.boolean(), vinesMoved: z.number().int() })),
   underFloor: z.array(z.object({ zone: zoneNumber, sampled: z.number().int(), floor: z.number().int() })),

@@ -20,7 +20,7 @@ export const useZoningsStore = defineStore('zonings', () => {
   const edit = (estateId: string, zoningId: string, made: { operation: ZoneOperation; reason: string; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/edits`, made);
   const step = (estateId: string, zoningId: string, made: { step: 'undo' | 'redo'; revision: number }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/${made.step}`, { revision: made.revision });
   const effects = (estateId: string, zoningId: string) => http.get<PublishEffects>(`${base(estateId)}/zonings/${zoningId}/effects`);
-  const publish = (estateId: string, zoningId: string, made: { reason: string; revision: number; replaces?: number | null }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/publish`, made);
+  const publish = (estateId: string, zoningId: string, made: { reason: string; revision: number; replaces?: number | null; callOff?: readonly string[] }) => http.post<ZoningView>(`${base(estateId)}/zonings/${zoningId}/publish`, made);
   const restore = (estateId: string, zoningId: string) => http.post<{ id: string }>(`${base(estateId)}/zonings/${zoningId}/restore`);
   const compare = (estateId: string, zoningId: string, { other, zones = null }: { other: string; zones?: number | null }) => http.get<ZoningComparison>(`${base(estateId)}/zonings/${zoningId}/compare`, { query: { with: other, zones } });
   const name = (estateId: string, zoningId: string, called: string) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { name: called });

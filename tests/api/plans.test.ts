@@ -21,7 +21,9 @@ import { MeasureRecord } from '../../server/models/MeasureRecord.ts';
 import { Plan } from '../../server/models/Plan.ts';
 import { Quota } from '../../server/models/Quota.ts';
 import { Reading } from '../../server/models/Reading.ts';
+import { Round } from '../../server/models/Round.ts';
 import { Season } from '../../server/models/Season.ts';
+import { Target } from '../../server/models/Target.ts';
 import { Vine } from '../../server/models/Vine.ts';
 import { Zoning } from '../../server/models/Zoning.ts';
 import { hasTool, readWithGdal } from './support/gdal.ts';
@@ -333,6 +335,31 @@ describe('a plan on zones that are published anew', () => {
     await publish(third);
     expect(await seen()).toBeNull();
     expect((await effects(await version(4, other))).plans).toMatchObject([{ id: made.id, isDraft: false, vinesMoved: 26 }]);
+
+    // A round of it is under way, and one of its vines is read.
+    const roundId = (await manager.post(`${base()}/plans/${made.id}/rounds`, { onDate: '2026-07-09', people: [crew.id] })).body.id as string;
+    const target = await Target.query().findOne({ planId: made.id }).throwIfNotFound();
+    await Reading.query().insert({ id: randomUUID(), estateId: estate.estateId, seasonId: same.seasonId, blockId: anew.blockId, rowId: target.rowId, ordinal: target.ordinal, roundId, targetId: target.id, measureCode: 'clusters', value: 20, unit: '', takenAt: new Date('2026-07-09T09:00:00Z'), source: 'field' });
+    const fifth = await version(5, other);
+    const before = await effects(fifth);
+    expect(before.openRounds).toMatchObject([{ id: roundId, planId: made.id, vines: 78, done: 1 }]);
+    expect(before.byZone.map(({ zone, vines }) => [zone, vines])).toEqual([[1, 2656], [2, 1328]]);
+    expect(before.byZone.map(({ sampled }) => sampled).sort()).toEqual([0, 1]);
+    expect(before.byZone.map(({ sampled, toVisit }) => sampled + toVisit)).toEqual([52, 26]);
+    const put = (by: typeof manager, zoningId: string, callOff: string[]) => by.post(`${base()}/zonings/${zoningId}/publish`, { revision: same.revision, callOff });
+    // A round of another block is none of theirs, and with it nothing is published.
+    const there = await plan();
+    await manager.post(`${base()}/plans/${there.id}/lock`);
+    const elsewhere = (await manager.post(`${base()}/plans/${there.id}/rounds`, { onDate: '2026-07-09', people: [crew.id] })).body.id as string;
+    for (const stray of [randomUUID(), elsewhere]) expect((await put(manager, fifth, [roundId, stray])).status).toBe(404);
+    expect((await Round.query().findById(elsewhere))!.state).toBe('sent');
+    expect((await Zoning.query().findById(fifth))!.state).toBe('draft');
+    expect((await Round.query().findById(roundId))!.state).toBe('sent');
+    expect((await put(manager, fifth, [roundId])).status).toBe(200);
+    expect((await Round.query().findById(roundId))!.state).toBe('called off');
+    expect(await AuditEntry.query().where({ subjectId: roundId, action: 'rounds.callOff' })).toHaveLength(1);
+    const after = await effects(await version(6, same.labels!));
+    expect([after.openRounds, after.byZone.map(({ sampled }) => sampled).sort(), after.byZone.map(({ toVisit }) => toVisit)]).toEqual([[], [0, 0, 1], [0, 0, 0]]);
   });
 });
 

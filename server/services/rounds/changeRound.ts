@@ -43,10 +43,18 @@ export async function changeRound(access: Access, roundId: string, change: z.inf
     if (round.state === change.state) return;
     if (round.state === 'called off') throw new Clash('calledOff', say('calledOff'));
     if (change.state === 'closed' && !change.whole && member && (await isLeftToOthers(trx, access, member, now))) return;
+    if (change.state === 'called off') return callOff(trx, access, round);
     const before = { state: round.state };
     await round.$query(trx).patch({ state: change.state, closedAt: change.state === 'closed' ? now : null });
-    await writeAudit(trx, access, { action: `rounds.${change.state === 'called off' ? 'callOff' : change.state}`, subjectType: 'round', subjectId: roundId, before, after: change });
+    await writeAudit(trx, access, { action: `rounds.${change.state}`, subjectType: 'round', subjectId: roundId, before, after: change });
   });
+}
+
+/** What was read on the round stays; whoever holds it is told so. */
+export async function callOff(trx: Transaction, access: Access, round: Round): Promise<void> {
+  const before = { state: round.state };
+  await round.$query(trx).patch({ state: 'called off', closedAt: null });
+  await writeAudit(trx, access, { action: 'rounds.callOff', subjectType: 'round', subjectId: round.id, before, after: { state: 'called off' } });
 }
 
 /** Notes that a member is done, and whether others still walk. */

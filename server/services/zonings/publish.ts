@@ -16,11 +16,10 @@ import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun } from '../../models/LotRowRun.ts';
 import { Person } from '../../models/Person.ts';
-import { Round } from '../../models/Round.ts';
-import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { lockZoning, requireSameOutline } from './editZones.ts';
 import { plansTouched } from './plansTouched.ts';
+import { callOffRounds, roundsUnderWay } from './roundsTouched.ts';
 import { readLabels } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -33,22 +32,24 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
   const readings = await zonedReadings(access.estateId, { ground, zoneOf: after, seasonId: zoning.seasonId });
   const inBlock = readings.filter((reading) => reading.vine >= 0);
   const isMoved = leavesZone(before, after);
-  const rounds = await Round.query().where({ estateId: access.estateId, blockId: zoning.blockId }).whereIn('state', ['sent', 'open']).orderBy('onDate');
+  const { rounds, toVisit } = await roundsUnderWay(access, ground);
+  const sampled = [...new Set(inBlock.map(({ vine }) => vine))];
   return {
     replaces: live?.number ?? null,
     readingsMoved: live ? inBlock.filter((reading) => isMoved(reading.vine)).length : 0,
     readingsOutside: readings.filter((reading) => reading.zone === 0).length,
     vinesMoved: live ? [...after.keys()].filter(isMoved).length : 0,
     renumbered: live ? pairZones(before, after).filter(({ from, to }) => from !== to).map(({ from, to }) => ({ from, to })).sort((a, b) => a.from - b.from) : [],
-    openRounds: await peopleOf(access, rounds),
+    openRounds: rounds,
+    byZone: byZone(after, { sampled, toVisit }),
     plans: live ? await plansTouched(access, { live, ground, isMoved }) : [],
     lots: live ? await lotsTouched(access, { zoning, ground, isMoved }) : [],
-    underFloor: await underFloor(access, { after, sampled: inBlock.map((reading) => reading.vine) }),
+    underFloor: await underFloor(access, { after, sampled }),
   };
 }
 
 /** Puts the draft in force for its season; the zones that were in force are kept as they were. Whoever has the draft open to edit sees by its revision that it is one no more. */
-export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; replaces?: number | null | undefined; now: Date }): Promise<void> {
+export async function publishZones(access: Access, zoningId: string, input: { reason: string; revision: number; replaces?: number | null | undefined; callOff?: readonly string[]; now: Date }): Promise<void> {
   await Zoning.transaction(async (trx) => {
     const zoning = await lockZoning(trx, access, zoningId, input.revision);
     if (zoning.state !== 'draft') throw new Clash('notDraft', say('onlyDraftPublished'));
@@ -60,6 +61,7 @@ export async function publishZones(access: Access, zoningId: string, input: { re
     if (input.replaces !== undefined && input.replaces !== (replaced?.number ?? null)) throw await inForceMeanwhile(replaced);
     if (replaced) await Zoning.query(trx).where({ estateId: access.estateId, id: replaced.id }).patch({ state: 'retired' });
     await Zoning.query(trx).where({ estateId: access.estateId, id: zoningId }).patch({ state: 'live', publishedAt: input.now, publishedBy: access.personId, revision: zoning.revision + 1 });
+    await callOffRounds(trx, access, { blockId: zoning.blockId, roundIds: input.callOff ?? [] });
     await writeAudit(trx, access, { action: 'zones.publish', subjectType: 'zoning', subjectId: zoningId, subjectName: ground.block.name, before: { live: replaced?.number ?? null }, after: { live: zoning.number }, reason: input.reason || null });
   });
 }
@@ -112,16 +114,6 @@ async function loadBoth(access: Access, zoningId: string): Promise<Both> {
   return { zoning, live, ground, after, before: live ? zonesOfVines(ground, live) : new Uint8Array(after.length) };
 }
 
-async function peopleOf(access: Access, rounds: Round[]): Promise<PublishEffects['openRounds']> {
-  const sent = await RoundPerson.query().where({ estateId: access.estateId }).whereIn('roundId', rounds.map((round) => round.id));
-  const people = await Person.query().findByIds([...new Set(sent.map((row) => row.personId))]).select('id', 'name');
-  return rounds.map((round) => ({
-    id: round.id,
-    onDate: round.onDate,
-    people: sent.filter((row) => row.roundId === round.id).map((row) => people.find((person) => person.id === row.personId)?.name ?? ''),
-  }));
-}
-
 /** The season's lots keep their vines whatever the zones are called; what changes is which zone those vines count for. A picked lot is in the cellar. */
 async function lotsTouched(access: Access, { zoning, ground, isMoved }: { zoning: Zoning; ground: BlockVines; isMoved: (vine: number) => boolean }): Promise<PublishEffects['lots']> {
   const runs = (await LotRowRun.query()
@@ -153,7 +145,15 @@ function movedInRun(ground: BlockVines, run: { rowId: string; from: number; to: 
 async function underFloor(access: Access, { after, sampled }: { after: Uint8Array; sampled: number[] }): Promise<PublishEffects['underFloor']> {
   if (sampled.length === 0) return [];
   const { floorVines } = estateSettings.parse((await Estate.query().findById(access.estateId).throwIfNotFound()).settings);
-  const zones = [...new Set(after)].filter((zone) => zone > 0).sort((a, b) => a - b);
-  const vines = [...new Set(sampled)];
-  return zones.map((zone) => ({ zone, sampled: vines.filter((vine) => after[vine] === zone).length, floor: floorVines })).filter((row) => row.sampled < row.floor);
+  return zonesIn(after).map((zone) => ({ zone, sampled: sampled.filter((vine) => after[vine] === zone).length, floor: floorVines })).filter((row) => row.sampled < row.floor);
+}
+
+function byZone(after: Uint8Array, { sampled, toVisit }: { sampled: readonly number[]; toVisit: readonly number[] }): PublishEffects['byZone'] {
+  const seen = new Set(sampled);
+  const count = (vines: Iterable<number>, zone: number) => [...vines].filter((vine) => after[vine] === zone).length;
+  return zonesIn(after).map((zone) => ({ zone, vines: count(after.keys(), zone), sampled: count(seen, zone), toVisit: count(toVisit.filter((vine) => !seen.has(vine)), zone) }));
+}
+
+function zonesIn(zoneOf: Uint8Array): number[] {
+  return [...new Set(zoneOf)].filter((zone) => zone > 0).sort((a, b) => a - b);
 }

@@ -83,9 +83,9 @@ function merged(map: ZoneMap, { zones, into }: EditOf<'merge'>): ZoneMap {
   return withLabels(map, map.labels.map((label) => (zones.includes(label) ? into : label)));
 }
 
-function split(grid: Grid, map: ZoneMap, { zone, lineLonLat }: EditOf<'split'>): ZoneMap {
+function split(grid: Grid, map: ZoneMap, { zone, lineLonLat, alongRow = null }: EditOf<'split'>): ZoneMap {
   assertZone(map, zone);
-  const cells = splitCells(grid, map.labels, { zone, lineLonLat });
+  const cells = splitCells(grid, map.labels, { zone, lineLonLat, alongRow });
   const labels = new Uint8Array(map.labels);
   const number = freeNumber(map);
   for (const cell of cells) labels[cell] = number;

@@ -9,7 +9,7 @@ import { toCellRing, type Grid, type Labels } from './grid.ts';
 import { findPatches } from './sievePatches.ts';
 
 /** Cells of the part that gets the new number: the smaller one, or the right-hand one of two equal parts. */
-export function splitCells(grid: Grid, labels: Labels, { zone, lineLonLat }: { zone: number; lineLonLat: readonly LonLat[] }): number[] {
+export function splitCells(grid: Grid, labels: Labels, { zone, lineLonLat, alongRow = null }: { zone: number; lineLonLat: readonly LonLat[]; /** The row that the line runs beside, by its name. */ alongRow?: string | null }): number[] {
   const line = toCellRing(lineLonLat.map((lonLat) => toUtm(lonLat, grid.epsg)), grid);
   const own = labels.map((label) => (label === zone ? 1 : 0));
   const { patchOf } = findPatches(own, grid.cols, 8);
@@ -22,6 +22,7 @@ export function splitCells(grid: Grid, labels: Labels, { zone, lineLonLat }: { z
   }
   const [left, right] = sides;
   if (left.length === 0 || right.length === 0) {
+    if (alongRow !== null) throw new AnalysisError('edit-row-misses', `All of zone ${zone} lies on one side of row ${alongRow}; choose a row with ground of the zone on both sides.`);
     throw new AnalysisError('edit-line-misses', `The line does not cut zone ${zone} in two; draw it across the zone.`);
   }
   return left.length < right.length ? left : right;

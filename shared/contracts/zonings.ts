@@ -118,6 +118,8 @@ export const zoningView = z.object({
   beginsByHand: z.boolean(),
   /** The number of the version that its edits begin with; null where they begin with zones as computed. */
   takenUpFrom: z.number().int().nullable(),
+  /** How many zones its edits begin with, which may be fewer than were asked for; null before a number is kept. */
+  beginsWith: z.number().int().nullable(),
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),

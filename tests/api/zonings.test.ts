@@ -625,7 +625,8 @@ describe('publishing', () => {
     const again = await view((await manager.post(`${base()}/zonings/${copy.id}/restore`)).body.id as string);
     expect([again.zones.length, again.beginsByHand, again.takenUpFrom]).toEqual([1, true, copy.number]);
     const anew = (await manager.patch(`${base()}/zonings/${copy.id}`, { chosenZones: 4 })).body as ZoningView;
-    expect([anew.zones.length, anew.beginsByHand, anew.takenUpFrom]).toEqual([3, false, null]);
+    // Of the four that were asked for, cleaning left three, and three is what its edits begin with.
+    expect([anew.zones.length, anew.chosenZones, anew.beginsWith, anew.beginsByHand, anew.takenUpFrom]).toEqual([3, 4, 3, false, null]);
     expect(anew.zones.map(({ name, colour }) => [name, colour])).toEqual(anew.zones.map(() => ['', null]));
     expect((await edit(copy.id, { kind: 'rename', zone: 3, name: 'Haut' })).zones.map(({ name }) => name)).toEqual(['', '', 'Haut']);
   });

@@ -8,6 +8,7 @@ import NumberField from '../../src/components/base/NumberField.vue';
 import ProblemNote from '../../src/components/base/ProblemNote.vue';
 import ProgressRow from '../../src/components/base/ProgressRow.vue';
 import QuietState from '../../src/components/base/QuietState.vue';
+import TextField from '../../src/components/base/TextField.vue';
 import { HttpProblem, offlineProblem } from '../../src/lib/httpProblem.ts';
 import { thinSpace } from '../../src/lib/format.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
@@ -16,6 +17,17 @@ let wrapper: VueWrapper;
 afterEach(() => wrapper.unmount());
 
 const sugar: Evidence = { value: 23.4, halfWidth: 0.5, unit: '°Brix', n: 13, confidence: 0.95, kind: 'measured' };
+
+describe('text field', () => {
+  it('says that no more fits before the browser cuts a long text without a word', async () => {
+    wrapper = await mountWithTexts(TextField, { props: { label: 'Name', maxlength: 80, modelValue: 'a'.repeat(79) } });
+    expect(wrapper.find('.field-doubt').exists()).toBe(false);
+    await wrapper.setProps({ modelValue: 'a'.repeat(80) });
+    expect(textOf(wrapper.find('.field-doubt').element)).toBe('No more than 80 characters fit.');
+    await wrapper.setProps({ maxlength: 8, modelValue: '12345678' });
+    expect(wrapper.find('.field-doubt').exists()).toBe(false);
+  });
+});
 
 describe('evidence mark', () => {
   it('is read aloud as one sentence', async () => {

@@ -69,6 +69,7 @@ describe('splitting', () => {
     const block = start('1122 1122');
     expect(() => applyEdit(block.grid, block.map, { kind: 'split', zone: 1, lineLonLat: line([3, 0], [3, 2]) })).toThrow('The line does not cut zone 1 in two; draw it across the zone.');
     expect(() => applyEdit(block.grid, block.map, { kind: 'split', zone: 1, lineLonLat: line([2, 0], [2, 2]) })).toThrow(/does not cut zone 1/);
+    expect(() => applyEdit(block.grid, block.map, { kind: 'split', zone: 1, lineLonLat: line([2, 0], [2, 2]), alongRow: '7a' })).toThrow('All of zone 1 lies on one side of row 7a; choose a row with ground of the zone on both sides.');
     expect(() => applyEdit(block.grid, block.map, { kind: 'split', zone: 1, lineLonLat: line([1, 1], [1, 1]) })).toThrow('A line needs two different points; draw it across the zone.');
   });
 });

@@ -12,6 +12,7 @@ export const es: Record<string, string> = {
   'Cell {1} is not on this block\'s grid; reload the block and choose again.': 'La celda {1} no está en la cuadrícula de esta parcela; cargue la parcela de nuevo y elija otra vez.',
   'Stored zones cannot be read: run {1} does not fit {2} cells.': 'No se pueden leer las zonas guardadas: el tramo {1} no cabe en {2} celdas.',
   'Stored zones cannot be read: they fill {1} of {2} cells.': 'No se pueden leer las zonas guardadas: llenan {1} de {2} celdas.',
+  'All of zone {1} lies on one side of row {2}; choose a row with ground of the zone on both sides.': 'Toda la zona {1} queda a un lado de la hilera {2}; elija una hilera con terreno de la zona a ambos lados.',
   'The line does not cut zone {1} in two; draw it across the zone.': 'La línea no corta en dos la zona {1}; dibújela a través de la zona.',
   'A line needs two different points; draw it across the zone.': 'Una línea necesita dos puntos distintos; dibújela a través de la zona.',
   'The outline covers some ground twice: it crosses itself or its parts overlap. Correct the outline.': 'El contorno cubre dos veces el mismo terreno: se cruza consigo mismo o sus partes se solapan. Corrija el contorno.',

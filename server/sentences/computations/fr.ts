@@ -12,6 +12,7 @@ export const fr: Record<string, string> = {
   'Cell {1} is not on this block\'s grid; reload the block and choose again.': 'La cellule {1} n’est pas sur la grille de cette parcelle ; rechargez la parcelle et choisissez de nouveau.',
   'Stored zones cannot be read: run {1} does not fit {2} cells.': 'Les zones enregistrées sont illisibles : la suite {1} n’entre pas dans {2} cellules.',
   'Stored zones cannot be read: they fill {1} of {2} cells.': 'Les zones enregistrées sont illisibles : elles remplissent {1} cellules sur {2}.',
+  'All of zone {1} lies on one side of row {2}; choose a row with ground of the zone on both sides.': 'Toute la zone {1} se trouve d’un seul côté du rang {2} ; choisissez un rang qui a du terrain de la zone des deux côtés.',
   'The line does not cut zone {1} in two; draw it across the zone.': 'La ligne ne coupe pas la zone {1} en deux ; tracez-la à travers la zone.',
   'A line needs two different points; draw it across the zone.': 'Une ligne a besoin de deux points différents ; tracez-la à travers la zone.',
   'The outline covers some ground twice: it crosses itself or its parts overlap. Correct the outline.': 'Le contour couvre deux fois le même terrain : il se croise ou ses parties se recouvrent. Corrigez le contour.',

@@ -12,6 +12,7 @@ export const it: Record<string, string> = {
   'Cell {1} is not on this block\'s grid; reload the block and choose again.': 'La cella {1} non è nella griglia di questo appezzamento; ricarichi l’appezzamento e scelga di nuovo.',
   'Stored zones cannot be read: run {1} does not fit {2} cells.': 'Le zone salvate non si possono leggere: la sequenza {1} non sta in {2} celle.',
   'Stored zones cannot be read: they fill {1} of {2} cells.': 'Le zone salvate non si possono leggere: riempiono {1} celle su {2}.',
+  'All of zone {1} lies on one side of row {2}; choose a row with ground of the zone on both sides.': 'Tutta la zona {1} sta da un solo lato del filare {2}; scelga un filare con terreno della zona da entrambi i lati.',
   'The line does not cut zone {1} in two; draw it across the zone.': 'La linea non taglia in due la zona {1}; la tracci attraverso la zona.',
   'A line needs two different points; draw it across the zone.': 'Una linea ha bisogno di due punti diversi; la tracci attraverso la zona.',
   'The outline covers some ground twice: it crosses itself or its parts overlap. Correct the outline.': 'Il contorno copre due volte lo stesso terreno: si incrocia o le sue parti si sovrappongono. Corregga il contorno.',

@@ -12,6 +12,7 @@ export const pt: Record<string, string> = {
   'Cell {1} is not on this block\'s grid; reload the block and choose again.': 'A célula {1} não está na grelha desta parcela; carregue a parcela de novo e volte a escolher.',
   'Stored zones cannot be read: run {1} does not fit {2} cells.': 'As zonas guardadas não podem ser lidas: a sequência {1} não cabe em {2} células.',
   'Stored zones cannot be read: they fill {1} of {2} cells.': 'As zonas guardadas não podem ser lidas: preenchem {1} de {2} células.',
+  'All of zone {1} lies on one side of row {2}; choose a row with ground of the zone on both sides.': 'Toda a zona {1} fica de um só lado do bardo {2}; escolha um bardo com terreno da zona de ambos os lados.',
   'The line does not cut zone {1} in two; draw it across the zone.': 'A linha não corta a zona {1} em duas; desenhe-a através da zona.',
   'A line needs two different points; draw it across the zone.': 'Uma linha precisa de dois pontos diferentes; desenhe-a através da zona.',
   'The outline covers some ground twice: it crosses itself or its parts overlap. Correct the outline.': 'O contorno cobre duas vezes o mesmo terreno: cruza-se ou as suas partes sobrepõem-se. Corrija o contorno.',

@@ -115,6 +115,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     fruitZones: fruitZonesOf(zoning, options.data, evidence),
     beginsByHand: showsKept && candidate !== undefined && !zoning.baseLabels!.equals(candidate.labels),
     takenUpFrom: kept ? await takenUpFrom(access, zoningId) : null,
+    beginsWith: kept ? new Set(decodeLabels(zoning.baseLabels!).filter((zone) => zone > 0)).size : null,
     shown: count,
     zones,
     problem: job?.problem ?? null,

@@ -48,6 +48,7 @@ export function zoningReport({ grid, result, notes, secondsPerStage, secondsBesi
     evidence: result.evidence,
     weights: result.weights,
     advisedWeights: result.advisedWeights,
+    layerPairs: result.layerPairs,
     componentShares: result.componentShares,
     zones: chosen.zones.map(({ polygonsXY: _metres, polygonsLonLat: _degrees, ...zone }) => ({ ...zone, areaHa: zone.areaM2 / 10_000 })),
     differences: chosen.differences,

@@ -87,21 +87,22 @@ export function rankCorrelation(first: ArrayLike<number>, second: ArrayLike<numb
   return correlation(averageRanks(first), averageRanks(second));
 }
 
-/** Pearson's correlation; NaN when one column is constant. */
+/** Pearson's correlation; NaN when one column is constant. Values are taken from the first of their column, so that rounding makes no spread of none. */
 export function correlation(first: ArrayLike<number>, second: ArrayLike<number>): number {
   const count = first.length;
+  const [originA, originB] = [first[0] ?? 0, second[0] ?? 0];
   let meanA = 0;
   let meanB = 0;
   for (let i = 0; i < count; i++) {
-    meanA += first[i]! / count;
-    meanB += second[i]! / count;
+    meanA += (first[i]! - originA) / count;
+    meanB += (second[i]! - originB) / count;
   }
   let cross = 0;
   let squareA = 0;
   let squareB = 0;
   for (let i = 0; i < count; i++) {
-    const a = first[i]! - meanA;
-    const b = second[i]! - meanB;
+    const a = first[i]! - originA - meanA;
+    const b = second[i]! - originB - meanB;
     cross += a * b;
     squareA += a * a;
     squareB += b * b;

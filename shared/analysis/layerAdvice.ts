@@ -8,9 +8,9 @@
  * which is work of its own on a small plane, so that it may be done elsewhere and added afterwards.
  */
 
-import { correlation } from './agreement.ts';
 import type { Cells, Grid } from './grid.ts';
 import { edgeComparison, type EdgeCoincidence } from './layerAdviceEdges.ts';
+import { correlationOfCells } from './layerPairs.ts';
 import { quantileOfSorted } from './quantile.ts';
 import type { Random } from './random.ts';
 import { commonCells, evidenceField, type EvidenceField } from './verdictField.ts';
@@ -34,7 +34,7 @@ export interface AdvisableLayer {
 }
 
 /** Above this two layers say the same; common practice in soil zoning. */
-const REPEATS_ABOVE = 0.9;
+export const REPEATS_ABOVE = 0.9;
 /**
  * Of two measured layers neither is doubted: nobody tells which is right, and on simulated blocks leaving one out costs more than
  * it saves. With a third, noise among clear layers is told apart.
@@ -94,20 +94,6 @@ function adviseEvidence(layer: AdvisableLayer, evidence: readonly AdvisableLayer
   if (repeats.length === 0) return advice(layer.id, 1, 'evidence');
   const [first] = repeats;
   return advice(layer.id, 1 / (repeats.length + 1), 'repeats', { about: first!.other.id, figures: { correlation: first!.r } });
-}
-
-/** Correlation over the cells that both layers have; 0 when one of them is constant there. */
-function correlationOfCells(first: Cells, second: Cells): number {
-  const inFirst = new Float64Array(first.length);
-  const inSecond = new Float64Array(first.length);
-  let count = 0;
-  for (let cell = 0; cell < first.length; cell++) {
-    if (Number.isNaN(first[cell]!) || Number.isNaN(second[cell]!)) continue;
-    inFirst[count] = first[cell]!;
-    inSecond[count++] = second[cell]!;
-  }
-  const r = correlation(inFirst.subarray(0, count), inSecond.subarray(0, count));
-  return Number.isNaN(r) ? 0 : r;
 }
 
 /** The advice with what was found of the edges of context layers; a layer that could not be compared keeps no figures. */

@@ -10,6 +10,7 @@ import { polygonsArea } from '../geo/rings.ts';
 import { groupBy } from '../groupBy.ts';
 import { adviseLayers, compareEdges, edgeTask, layersToCompare, withEdges, type EdgeTask, type LayerAdvice } from './layerAdvice.ts';
 import type { EdgeCoincidence } from './layerAdviceEdges.ts';
+import { layerPairs } from './layerPairs.ts';
 import type { Grid } from './grid.ts';
 import { cellsPerLabel } from './labels.ts';
 import { allReachWidth } from './labelsWidth.ts';
@@ -142,6 +143,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
     options,
     weights: layers.map(({ id }, l) => ({ layerId: id, weight: weights[l]! })),
     advisedWeights: withEdges(ground.advised, edges),
+    layerPairs: layerPairs(layers),
     verdict: withFruit(verdict, fruit),
     standsOut: isApart && evidence.standingOut ? standOutGround(evidence.standingOut, { whole: cleaned[0]!, stacked }) : null,
     fruit,

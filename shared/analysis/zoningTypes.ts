@@ -3,6 +3,7 @@
 import type { MultiPolygonLonLat, MultiPolygonXY } from '../geo/coordinates.ts';
 import type { Cells, Grid, Labels } from './grid.ts';
 import type { LayerAdvice } from './layerAdvice.ts';
+import type { LayerPair } from './layerPairs.ts';
 import type { RowsXY } from '../geo/rowsLayout.ts';
 import type { VineTable } from '../geo/vines.ts';
 import type { SnapMode } from './snapToRows.ts';
@@ -108,6 +109,8 @@ export interface ZoneDifference {
   readonly highest: number;
   /** Root of the mean squared deviation from the own zone's mean. */
   readonly withinSd: number;
+  /** Share of the layer's variance over the cells that lies between zones, 0…1; null where it is the same everywhere. */
+  readonly explained: number | null;
 }
 
 /** What speaks for one number of zones. Null where a figure has no meaning, as for one zone. */
@@ -149,6 +152,8 @@ export interface ZoningResult {
   readonly options: ZoningOptions;
   readonly weights: readonly { readonly layerId: string; readonly weight: number }[];
   readonly advisedWeights: readonly LayerAdvice[];
+  /** How alike every two layers of numbers are. */
+  readonly layerPairs: readonly LayerPair[];
   readonly verdict: VerdictResult;
   /** Ground that stands out and that no number of zones shows, with the verdict that says so. */
   readonly standsOut: MultiPolygonLonLat | null;

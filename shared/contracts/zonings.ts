@@ -102,13 +102,15 @@ export const zoningView = z.object({
   options: zoningOptions.extend({ layers: z.array(z.object({ layerId: id, weight: weight.nullable().default(null) })) }),
   engineVersion: z.string(),
   layers: z.array(z.object({ layerId: id, name: z.string(), type: z.string(), unit: z.string(), measuredOn: z.string().nullable(), role: z.enum(['evidence', 'context']), weight: z.number(), advised: z.object({ weight: z.number(), code: z.string(), about: z.string().nullable(), figures }).nullable() })),
+  /** Pearson's correlation of every two layers of numbers, over the smoothed cells that both have; none for runs of before. */
+  layerPairs: z.array(z.object({ one: z.string(), other: z.string(), correlation: z.number() })),
   reasons: z.array(reason),
   /** Ground that stands out and that no number of zones shows; null without such ground, and for runs of before. */
   standsOut: multiPolygonGeometry.nullable(),
   alsoOffer: z.array(z.number().int()),
   evidence: z.array(evidenceRow),
-  /** Of the zones that `zones` shows: lowest and highest mean of each layer of numbers, and the spread left inside. */
-  differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number() })),
+  /** Of the zones that `zones` shows: lowest and highest mean of each layer of numbers, the spread left inside, and the share of its variance that lies between them (eta squared). */
+  differences: z.array(z.object({ layerId: z.string(), lowest: z.number(), highest: z.number(), withinSd: z.number(), explained: z.number().nullable() })),
   warnings: z.array(reason),
   /** The zones tested on readings of fruit: analysis of variance by zone and a shuffle within rows. */
   fruit: z.array(z.object({ measure: z.string(), on: z.array(z.string()), n: z.number().int(), f: z.number().nullable(), dfBetween: z.number().nullable(), dfWithin: z.number().nullable(), omegaSquared: z.number().nullable(), leaveOneOutRSquared: z.number().nullable(), p: z.number(), shuffle: z.enum(['rows', 'free']) })),

@@ -3,6 +3,7 @@ import { describe, expect, it } from 'vitest';
 import type { BlockLayerView } from '../../shared/contracts/layers.ts';
 import type { ZoningRequestOptions, ZoneView, ZoningLine, ZoningView } from '../../shared/contracts/zonings.ts';
 import FruitTests from '../../src/components/zones/FruitTests.vue';
+import LayerShares from '../../src/components/zones/LayerShares.vue';
 import ZoningForm from '../../src/components/zones/ZoningForm.vue';
 import ZoningLayers from '../../src/components/zones/ZoningLayers.vue';
 import ZoningVersions from '../../src/components/zones/ZoningVersions.vue';
@@ -57,6 +58,26 @@ describe('what to zone from', () => {
     const list = await mountWithTexts(ZoningLayers, { props: { layers: [{ layerId: 'a', name: 'Flight', type: 'vigour', unit: '', measuredOn: '2025-06-20', role: 'evidence', weight: 1, advised: null }] } });
     expect(list.text()).toContain('2025');
     list.unmount();
+  });
+});
+
+describe('what each layer adds', () => {
+  const layers = [['a', 'Flight', 'vigour'], ['b', 'Soil', 'conductivity'], ['c', 'Map', 'soilClass']].map(([layerId, name, type]) => ({ layerId, name, type }));
+  const zoning = (layerPairs: ZoningView['layerPairs']) => ({ layers, layerPairs }) as unknown as ZoningView;
+  const zones = [1, 2].map((number) => ({ ...zone(number), layers: [{ layerId: 'a', n: 50, mean: number, sd: 0.5 }, { layerId: 'b', n: 50, mean: 20, sd: 3 }] }));
+  const linesOf = async (props: { zoning: ZoningView; zones: ZoneView[] }) => {
+    const part = await mountWithTexts(LayerShares, { props });
+    const lines = part.findAll('tbody tr').map((line) => line.findAll('th, td').map((cell) => textOf(cell.element)));
+    part.unmount();
+    return lines;
+  };
+
+  it('is told of the zones shown, with the layer that is most like it; of classes there is nothing to tell', async () => {
+    const pairs = [{ one: 'a', other: 'b', correlation: 0.954 }];
+    expect(await linesOf({ zoning: zoning(pairs), zones })).toEqual([['Flight', '50 %', 'Soil (0.95)'], ['Soil', '0 %', 'Flight (0.95)']]);
+    expect(await linesOf({ zoning: zoning(pairs), zones: [zones[0]!] })).toEqual([['Flight', 'Soil (0.95)'], ['Soil', 'Flight (0.95)']]);
+    expect(await linesOf({ zoning: zoning([]), zones })).toEqual([['Flight', '50 %'], ['Soil', '0 %']]);
+    expect(await linesOf({ zoning: zoning([]), zones: [zones[0]!] })).toEqual([]);
   });
 });
 

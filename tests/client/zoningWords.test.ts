@@ -89,18 +89,18 @@ describe('how far zones agree', () => {
 describe('why a layer has its weight', () => {
   type Layer = ZoningView['layers'][number];
   const layer = (layerId: string, role: Layer['role'], advised: Partial<NonNullable<Layer['advised']>> | null) => ({ layerId, name: layerId.toUpperCase(), type: 'vigour', role, advised: advised && { weight: 0, about: null, figures: {}, ...advised } }) as Layer;
-  const [vigour, soil] = [layer('vigour', 'evidence', { code: 'repeats', about: 'soil' }), layer('soil', 'evidence', { code: 'evidence' })];
+  const [vigour, soil] = [layer('vigour', 'evidence', { code: 'repeats', about: 'soil', figures: { correlation: 0.95 } }), layer('soil', 'evidence', { code: 'evidence' })];
   const edges = { correlation: 0.6, excess: 0.3, deviations: 4 };
   const why = (own: Layer) => adviceWords(own, [vigour, soil, own], { t, format });
 
   it('names the layer it repeats, or the measured layers whose edges it shares', () => {
-    expect(why(vigour)).toBe('zones.advice.repeats(SOIL, 0, 0)');
-    expect(why(layer('map', 'context', { code: 'context-offered', figures: edges }))).toBe('zones.advice.context-offered(VIGOUR and SOIL, 0, 0)');
+    expect(why(vigour)).toBe('zones.advice.repeats(SOIL, 0.95, 0, 0)');
+    expect(why(layer('map', 'context', { code: 'context-offered', figures: edges }))).toBe('zones.advice.context-offered(VIGOUR and SOIL, 0.6, 0, 0)');
   });
 
   it('does not say of edges that nobody could compare that they lie elsewhere', () => {
-    expect(why(layer('map', 'context', { code: 'context-off', figures: edges }))).toBe('zones.advice.context-off(, 0, 0)');
-    expect(why(layer('map', 'context', { code: 'context-off' }))).toBe('zones.advice.context-unknown(, 0, 0)');
+    expect(why(layer('map', 'context', { code: 'context-off', figures: edges }))).toBe('zones.advice.context-off(, 0.6, 0, 0)');
+    expect(why(layer('map', 'context', { code: 'context-off' }))).toBe('zones.advice.context-unknown(, 0, 0, 0)');
     expect(why(layer('map', 'context', null))).toBe('');
   });
 });

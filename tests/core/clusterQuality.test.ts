@@ -143,6 +143,8 @@ describe('agreement of two labellings', () => {
     expect([...averageRanks([10, 20, 20, 5])]).toEqual([2, 3.5, 3.5, 1]);
     expect(rankCorrelation([1, 2, 3, 4], [1, 4, 9, 16])).toBeCloseTo(1, 12);
     expect(correlation([1, 2, 3], [5, 5, 5])).toBeNaN();
+    // Six times a sixth of 4 is not 4: two columns without spread would be wholly alike.
+    expect(correlation([4, 4, 4, 4, 4, 4], [4.1, 4.1, 4.1, 4.1, 4.1, 4.1])).toBeNaN();
   });
 });
 

@@ -15,7 +15,7 @@ const layer = (layerId: string, over: Partial<ReportLayer> = {}): ReportLayer =>
 const zone = (number: number, over: Partial<ReportZone> = {}): ReportZone => ({ number, name: '', colour: null, areaM2: 10_000, vines: 100, missing: 3, means: [], polygonsLonLat: strip(3 + number / 1000), ...over });
 const report = (zones: readonly ReportZone[], layers: readonly ReportLayer[]): ZoneReport => ({
   language: 'en', units: 'metric', size: 'A4', today: new Date('2026-07-01'), timeZone: 'UTC', estateName: 'Estate', blockName: 'Long strip', number: 2, name: '', state: 'draft', madeAt: new Date('2026-06-30'),
-  verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, shown: 3, warnings: [], reasons: [], numbers: [], layers, differences: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
+  verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, shown: 3, warnings: [], reasons: [], numbers: [], layers, differences: [], layerPairs: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
   engineVersion: '1', seed: 1, smoothingM: 3, smallestPatchHa: 0.05, borders: 'free', standardise: 'plain', principalComponents: false, together: [], handEdits: 1, beginsByHand: false,
 });
 
@@ -55,7 +55,7 @@ describe('the printed zones', () => {
   });
 
   it.skipIf(!hasTool('pdftotext'))('say that other zones are shown than those advised, what was warned of, and the ground of the whole', async () => {
-    const input = { ...report([zone(1), zone(2)], [layer('Flight'), layer('Soil', { isClass: true }), layer('Height', { weight: 0 })]), shown: 2, reasons: [{ code: 'structure', about: null }], warnings: [{ code: 'rows-against-ground', about: null, figures: { share: 0.61 } }], differences: ['Flight', 'Height'].map((layerId) => ({ layerId, lowest: 1, highest: 2, withinSd: 0.5 })) };
+    const input = { ...report([zone(1), zone(2)], [layer('Flight'), layer('Soil', { isClass: true }), layer('Height', { weight: 0 })]), shown: 2, reasons: [{ code: 'structure', about: null }], warnings: [{ code: 'rows-against-ground', about: null, figures: { share: 0.61 } }], differences: ['Flight', 'Height'].map((layerId) => ({ layerId, lowest: 1, highest: 2, withinSd: 0.5, explained: layerId === 'Flight' ? 0.62 : 0.07 })), layerPairs: [{ one: 'Flight', other: 'Height', correlation: -0.31 }] };
     const text = (await textOf({ ...input, zones: input.zones.map((one) => ({ ...one, means: [{ layerId: 'Soil', mean: 1.5, sd: 0.5 }] })) })).replace(/\s+/g, ' ');
     expect(text).toContain('Number of zones shown here: 2; advised: 3.');
     expect(text).toContain('61 % of the vines stand in another zone than their ground');
@@ -64,5 +64,8 @@ describe('the printed zones', () => {
     expect(text).not.toContain('1.50');
     expect(text).toContain('Between zones Flight runs from 1.00 to 2.00');
     expect(text).not.toContain('Between zones Height');
+    // How much lies between zones is told of every layer of numbers, and the two most alike are named.
+    expect(text).toMatch(/Flight – 1\.00 1\.00 62 Soil – 1\.00 1\.00 – Height – 0\.00 1\.00 7 /);
+    expect(text).toContain('most alike are Flight and Height (Pearson’s correlation -0.31;');
   });
 });

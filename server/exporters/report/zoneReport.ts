@@ -1,4 +1,5 @@
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
+import type { LayerPair } from '../../../shared/analysis/layerPairs.ts';
 import type { NumberNote } from '../../../shared/analysis/numberNotes.ts';
 import type { ReportLanguage } from './reportTexts.ts';
 
@@ -28,7 +29,8 @@ export interface ZoneReport {
   /** What is said of the number of zones beside others. */
   numbers: readonly NumberNote[];
   layers: readonly ReportLayer[];
-  differences: readonly { layerId: string; lowest: number; highest: number; withinSd: number }[];
+  differences: readonly { layerId: string; lowest: number; highest: number; withinSd: number; explained: number | null }[];
+  layerPairs: readonly LayerPair[];
   zones: readonly ReportZone[];
   boundary: MultiPolygonLonLat;
   /** Ground that stands out and that no number of zones shows. */

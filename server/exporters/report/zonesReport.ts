@@ -159,15 +159,26 @@ function meanOf(stats: { mean: number | null; sd: number | null } | undefined, l
 function layerTable(page: Paper, report: ZoneReport, { texts, figure, day }: Words): void {
   if (report.layers.length === 0) return;
   heading(page, texts.layers as string);
-  const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }];
+  const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }, { head: texts.between as string, share: 3, isFigure: true }];
+  const betweenOf = (layerId: string) => (report.zones.length > 1 ? report.differences.find((difference) => difference.layerId === layerId)?.explained : null) ?? null;
   table(page, columns, report.layers.map((layer) => [
     layer.isContext ? `${layer.name} (${texts.context as string})` : layer.name,
     layer.measuredOn === null ? '–' : day(new Date(`${layer.measuredOn}T12:00:00Z`)),
     figure(layer.weight, 2),
     layer.advised === null ? '–' : figure(layer.advised, 2),
+    layer.isClass || betweenOf(layer.layerId) === null ? '–' : figure(100 * betweenOf(layer.layerId)!, 0),
   ]));
   page.moveDown(0.4);
+  paragraph(page, [...(report.zones.length > 1 ? [texts.betweenMeans] : []), ...alikeOf(report, texts, figure)].join(' '));
   for (const layer of report.layers) if (layer.override) paragraph(page, filled(texts.override as string, { layer: layer.name, ...layer.override }));
+}
+
+/** The two layers that repeat each other most. */
+function alikeOf({ layerPairs, layers }: ZoneReport, texts: ReportTexts, figure: Words['figure']): string[] {
+  const [most] = [...layerPairs].sort((a, b) => Math.abs(b.correlation) - Math.abs(a.correlation));
+  const nameOf = (id: string) => layers.find(({ layerId }) => layerId === id)?.name;
+  const [one, other] = most ? [nameOf(most.one), nameOf(most.other)] : [];
+  return most && one && other ? [filled(texts.alike as string, { one, other, correlation: figure(most.correlation, 2) })] : [];
 }
 
 function method(page: Paper, report: ZoneReport, { texts, length, patch }: Words): void {

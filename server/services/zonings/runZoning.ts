@@ -72,7 +72,7 @@ function daysOfFruit({ readings = [], together = [] }: ZoningInput): Record<stri
 }
 
 async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Record<string, string[]>): Promise<void> {
-  const { verdict, evidence, candidates, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares, cellSizeM, standsOut } = result;
+  const { verdict, evidence, candidates, advisedWeights, layerPairs, weights, alsoOffer, bestSeveral, warnings, fruit, componentShares, cellSizeM, standsOut } = result;
   await Zoning.transaction(async (trx) => {
     const stillWanted = await Zoning.query(trx).findOne({ estateId: zoning.estateId, id: zoning.id, state: 'running' }).forUpdate().select('id');
     if (!stillWanted) return;
@@ -85,7 +85,7 @@ async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Reco
     );
     await Zoning.query(trx).where({ estateId: zoning.estateId, id: zoning.id }).patch({
       state: 'proposed', engineVersion: result.engineVersion, verdict: plainFigures(verdict), advisedZones: result.advisedK,
-      evidence: plainFigures({ rows: evidence, advisedWeights, weights, alsoOffer, bestSeveral, warnings, fruit, fruitDays, componentShares, cellSizeM, standsOut }),
+      evidence: plainFigures({ rows: evidence, advisedWeights, layerPairs, weights, alsoOffer, bestSeveral, warnings, fruit, fruitDays, componentShares, cellSizeM, standsOut }),
     });
   });
 }

@@ -3,6 +3,7 @@ import { decodeLabels } from '../../../shared/analysis/cellBytes.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { LayerAdvice } from '../../../shared/analysis/layerAdvice.ts';
+import type { LayerPair } from '../../../shared/analysis/layerPairs.ts';
 import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
 import type { Zone as TracedZone, ZoneEvidence, ZoningWarning } from '../../../shared/analysis/zoningTypes.ts';
 import type { FruitCheck } from '../../../shared/analysis/verdictFruit.ts';
@@ -32,6 +33,8 @@ interface StoredEvidence {
   bestSeveral: number;
   warnings: ZoningWarning[];
   fruit?: FruitCheck;
+  /** Zonings of before have none. */
+  layerPairs?: LayerPair[];
   /** By measure; zonings of before have none. */
   fruitDays?: Record<string, string[]>;
   /** Zonings of before have none: theirs were the block's. */
@@ -104,6 +107,7 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     options: options.success ? options.data : { layers: [], zones: 'advise', standardise: 'plain', smoothingM: 3, smallestPatchHa: 0.05, narrowestRows: 0, borders: 'free', principalComponents: false, withBlocks: [] },
     engineVersion: zoning.engineVersion,
     layers,
+    layerPairs: evidence?.layerPairs ?? [],
     reasons: (verdict?.reasons ?? []).map((reason) => ({ ...reason, figures: { ...reason.figures } })),
     standsOut: evidence?.standsOut ? { type: 'MultiPolygon', coordinates: evidence.standsOut as unknown as ZoneView['geometry']['coordinates'] } : null,
     alsoOffer: evidence?.alsoOffer ?? [],

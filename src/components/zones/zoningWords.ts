@@ -55,7 +55,7 @@ export function adviceWords({ advised }: Layer, layers: readonly Layer[], { t, f
   const isUnknown = code === 'context-off' && figures.correlation === undefined;
   // Edges of terrain and maps are compared with those of all measured layers together.
   const beside = layers.filter(({ layerId, role }) => (code === 'context-offered' ? role === 'evidence' : layerId === about));
-  return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map((layer) => layerName(layer, t))), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
+  return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map((layer) => layerName(layer, t))), correlation: format.number(figures.correlation ?? 0, 2), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
 }
 
 /** How far zones agree: the same for every vine, else by the adjusted Rand index in five steps of our own. */

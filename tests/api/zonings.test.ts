@@ -21,6 +21,7 @@ import { requestZoning } from '../../server/services/zonings/request.ts';
 import { zoningJob } from '../../server/services/zonings/runZoning.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { makePlateauBlock, workOnZoning, type PlateauBlock } from './support/makePlateauBlock.ts';
+import { randomOperation } from './support/randomOperation.ts';
 import { lonLatAt } from './support/shapes.ts';
 import { startTestApp, type Agent, type TestApp } from './support/testApp.ts';
 import { jobEnd } from './support/withFiles.ts';
@@ -499,7 +500,7 @@ describe('a draft', () => {
       for (let step = 0; step < 3; step++) {
         const { revision } = await Zoning.query().findById(zoningId).throwIfNotFound();
         // A random edit may make no sense for the zones that are there; a refusal must leave them as they were.
-        const done = await editZones(access, zoningId, { operation: randomOperation(random), reason: '', revision }).then(() => true, (error: { name: string }) => {
+        const done = await editZones(access, zoningId, { operation: randomOperation(plot, random), reason: '', revision }).then(() => true, (error: { name: string }) => {
           expect(error.name).toBe('AnalysisError');
           return false;
         });
@@ -513,26 +514,6 @@ describe('a draft', () => {
     expect(taken).toBeGreaterThan(20);
   }, 180_000);
 });
-
-function randomOperation(random: () => number): ZoneOperation {
-  const zone = () => 1 + randomIndex(random, 4);
-  const point = () => lonLatAt(160 * random(), 100 * random());
-  const row = () => plot.ground.stored[randomIndex(random, plot.ground.stored.length)]!.id;
-  const [a, b, c] = [point(), point(), point()];
-  const choices: ZoneOperation[] = [
-    { kind: 'merge', zones: [zone()], into: zone() },
-    { kind: 'split', zone: zone(), line: { type: 'LineString', coordinates: [a, b, c] } },
-    { kind: 'splitAlongRow', zone: zone(), rowId: row() },
-    { kind: 'giveRows', toZone: zone(), rows: [{ rowId: row(), from: null, to: null }, { rowId: row(), from: 3, to: 40 }] },
-    { kind: 'giveArea', toZone: zone(), area: { type: 'Polygon', coordinates: [[a, b, c, a]] } },
-    { kind: 'renumber', numbers: [{ from: zone(), to: 7 }] },
-    { kind: 'rename', zone: zone(), name: random() < 0.5 ? 'Côteau' : null },
-    { kind: 'recolour', zone: zone(), colour: random() < 0.5 ? '#56B4E9' : null },
-    { kind: 'snap', mode: random() < 0.5 ? 'wholeRow' : 'partRow', shortestRunM: 15 },
-    { kind: 'clean', smallestPatchHa: 0.03, narrowestRows: 3 },
-  ];
-  return choices[randomIndex(random, choices.length)]!;
-}
 
 describe('publishing', () => {
   let first: string;

@@ -201,10 +201,10 @@ const stableGround = z.object({
 });
 export type StableGroundView = z.infer<typeof stableGround>;
 
-/** How far zones and layers of other seasons agree: adjusted Rand index of zones by vine; of layers the rank correlation, the share of cells that stay in the same third, and where they keep their rank. */
+/** How far zones and layers of other seasons agree: adjusted Rand index of zones by vine, `zones` of the other season and `ownZones` of this zoning's own number; of layers the rank correlation, the share of cells that stay in the same third, and where they keep their rank. */
 export const zoningSeasons = z.object({
   ground: z.array(stableGround),
-  zones: z.array(z.object({ zoningId: id, number: z.number().int(), season: z.string(), zones: z.number().int(), adjustedRand: z.number(), vinesApart: z.number().int(), vines: z.number().int() })),
+  zones: z.array(z.object({ zoningId: id, number: z.number().int(), season: z.string(), zones: z.number().int(), ownZones: z.number().int(), adjustedRand: z.number(), vinesApart: z.number().int(), vines: z.number().int() })),
   layers: z.array(z.object({ layerId: id, name: z.string(), measuredOn: z.string(), otherId: id, otherName: z.string(), otherMeasuredOn: z.string(), rankCorrelation: z.number(), sameThird: z.number(), cells: z.number().int() })),
 });
 export type ZoningSeasons = z.infer<typeof zoningSeasons>;

@@ -695,7 +695,10 @@ describe('publishing', () => {
     expect(seasons.layers).toMatchObject([{ layerId: plot.layerId, otherId: older.id, rankCorrelation: 1, sameThird: 1 }]);
     // The same values in both seasons: every place keeps its rank, and the drawing is the whole block.
     expect(seasons.ground).toMatchObject([{ layerId: plot.layerId, measuredOn: ['2025-06-20', layer.measuredOn], shares: { steady: 1, moving: 0, chance: 0 }, areas: [{ ground: 'steady' }] }]);
-    expect(seasons.zones).toMatchObject([{ season: '2025', number: 900, zones: 2, adjustedRand: 1, vinesApart: 0 }]);
+    expect(seasons.zones).toMatchObject([{ season: '2025', number: 900, zones: 2, ownZones: 2, adjustedRand: 1, vinesApart: 0 }]);
+    // A run is compared in its own number, and says in which.
+    const one = await zoned({ zones: 1 });
+    expect((await manager.get(`${base()}/zonings/${one}/seasons`)).body.zones).toMatchObject([{ zones: 2, ownZones: 1 }]);
     await Zoning.query().where({ seasonId: season.id }).delete();
   });
 

@@ -38,7 +38,7 @@ async function otherZones(access: Access, zoning: Zoning, ground: BlockVines): P
     const theirs = await zonesShown(access, other, { ground });
     const both = [...mine.keys()].filter((vine) => mine[vine]! > 0 && theirs[vine]! > 0);
     const [a, b] = [both.map((vine) => mine[vine]!), both.map((vine) => theirs[vine]!)];
-    return { zoningId: other.id, number: other.number, season: seasons.find(({ id }) => id === other.seasonId)?.name ?? '', zones: new Set(b).size, adjustedRand: adjustedRandIndex(a, b), vinesApart: vinesApart(a, b), vines: both.length };
+    return { zoningId: other.id, number: other.number, season: seasons.find(({ id }) => id === other.seasonId)?.name ?? '', zones: new Set(b).size, ownZones: new Set(a).size, adjustedRand: adjustedRandIndex(a, b), vinesApart: vinesApart(a, b), vines: both.length };
   }));
 }
 

@@ -23,12 +23,12 @@ export interface ExportFormat {
 /** One row a format that zones leave in; the route, the menu and the checks read this table. */
 export const exportFormats: readonly ExportFormat[] = [
   { id: 'geojson', mediaType: 'application/geo+json', extension: 'geojson', write: zonesGeoJson },
-  { id: 'shapefile', mediaType: 'application/zip', extension: 'zip', write: (input) => shapefileOf(zoneFeatures(input)) },
+  { id: 'shapefile', mediaType: 'application/zip', extension: 'zip', write: (input) => shapefileOf(zoneFeatures(input), input.language) },
   { id: 'geopackage', mediaType: 'application/geopackage+sqlite3', extension: 'gpkg', write: (input) => geoPackageOf([zoneFeatures(input), rowFeatures(input)]) },
   { id: 'kml', mediaType: 'application/vnd.google-earth.kml+xml', extension: 'kml', write: zonesKml },
   { id: 'rows', mediaType: 'text/csv; charset=utf-8', extension: 'csv', about: 'rows', write: zonesRowTable },
   { id: 'rowsGeojson', mediaType: 'application/geo+json', extension: 'geojson', about: 'rows', write: (input) => geoJsonOf(rowFeatures(input)) },
-  { id: 'rowsShapefile', mediaType: 'application/zip', extension: 'zip', about: 'rows', write: (input) => shapefileOf(rowFeatures(input)) },
+  { id: 'rowsShapefile', mediaType: 'application/zip', extension: 'zip', about: 'rows', write: (input) => shapefileOf(rowFeatures(input), input.language) },
   { id: 'rowsKml', mediaType: 'application/vnd.google-earth.kml+xml', extension: 'kml', about: 'rows', write: rowsKml },
   { id: 'geotiff', mediaType: 'image/tiff', extension: 'tif', write: zonesGeoTiff },
   { id: 'layers', mediaType: 'image/tiff', extension: 'tif', withLayers: true, about: 'layers', write: zonesLayersGeoTiff },

@@ -1,3 +1,4 @@
+import type { Language } from '../../shared/contracts/common.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
 /** What every format of zones is written from: plain facts, no rows of the database. */
@@ -8,7 +9,7 @@ export interface ZoneExport {
   zoningName: string;
   state: string;
   /** Of who takes the file away: tables open in a spreadsheet set to it. */
-  language: string;
+  language: Language;
   /** Instant the zones were made. */
   madeAt: Date;
   zones: readonly ExportedZone[];

@@ -1,3 +1,5 @@
+import { cutText } from '../cutText.ts';
+import type { CutText } from './cutNotes.ts';
 import type { FeatureField, FeatureLayer } from './featureLayer.ts';
 
 /** A text field holds at most so many bytes. */
@@ -9,10 +11,11 @@ interface Column {
   readonly decimals: number;
   readonly width: number;
   readonly values: readonly string[];
+  readonly cut: readonly CutText[];
 }
 
-/** The table of a shapefile, dBASE III: names in capitals, texts as wide as the longest of them, numbers right-aligned, nothing as blanks. */
-export function attributeFile({ fields, features }: FeatureLayer): Buffer {
+/** The table of a shapefile, dBASE III: names in capitals, texts as wide as the longest of them, numbers right-aligned, nothing as blanks. With the texts that no field holds. */
+export function attributeFile({ fields, features }: FeatureLayer): { bytes: Buffer; cut: CutText[] } {
   const columns = fields.map((field, at) => columnOf(field, features.map(({ values }) => values[at] ?? null)));
   const recordBytes = 1 + columns.reduce((sum, { width }) => sum + width, 0);
   const head = Buffer.alloc(32 + columns.length * 32 + 1);
@@ -32,19 +35,15 @@ export function attributeFile({ fields, features }: FeatureLayer): Buffer {
   });
   head[head.length - 1] = 0x0d;
   const records = features.map((_feature, index) => Buffer.concat([Buffer.from(' '), ...columns.map((column) => padded(column, column.values[index]!))]));
-  return Buffer.concat([head, ...records, Buffer.from([0x1a])]);
+  return { bytes: Buffer.concat([head, ...records, Buffer.from([0x1a])]), cut: columns.flatMap(({ cut }) => cut) };
 }
 
 function columnOf({ name, type, decimals = 0 }: FeatureField, values: readonly (string | number | null)[]): Column {
-  const texts = values.map((value) => (value === null ? '' : shortened(typeof value === 'number' ? value.toFixed(decimals) : value)));
-  return { name: name.toUpperCase(), type: type === 'text' ? 'C' : 'N', decimals, values: texts, width: Math.max(1, ...texts.map((text) => Buffer.byteLength(text))) };
-}
-
-/** At most so many bytes as a field holds, never half a character. */
-function shortened(value: string): string {
-  let text = value;
-  while (Buffer.byteLength(text) > mostBytes) text = [...text].slice(0, -1).join('');
-  return text;
+  const column = name.toUpperCase();
+  const wholes = values.map((value) => (value === null ? '' : typeof value === 'number' ? value.toFixed(decimals) : value));
+  const texts = wholes.map((whole) => cutText(whole, mostBytes));
+  const cut = wholes.flatMap((whole, at) => (texts[at] === whole ? [] : [{ line: at + 1, column, whole }]));
+  return { name: column, type: type === 'text' ? 'C' : 'N', decimals, values: texts, cut, width: Math.max(1, ...texts.map((text) => Buffer.byteLength(text))) };
 }
 
 function padded({ type, width }: Column, value: string): Buffer {

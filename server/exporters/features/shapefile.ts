@@ -2,17 +2,21 @@ import { zipSync } from 'fflate';
 import { boundsOf } from '../../../shared/geo/bounds.ts';
 import type { Bounds } from '../../../shared/geo/coordinates.ts';
 import { closeRing, windForShapefile } from '../../../shared/geo/rings.ts';
+import type { Language } from '../../../shared/contracts/common.ts';
+import { cutNotes } from './cutNotes.ts';
 import { attributeFile } from './dbase.ts';
 import { layerBounds, type FeatureLayer, type FeatureShape } from './featureLayer.ts';
 
 /**
  * A zip with one shapefile (ESRI Shapefile Technical Description, July 1998): outer rings clockwise, WGS 84, attributes in
- * UTF-8 with the .cpg that says so. All features of a layer are of one kind.
+ * UTF-8 with the .cpg that says so. All features of a layer are of one kind. Texts that the table cannot hold stand whole in
+ * a file beside it, in the language of who takes it away.
  */
-export function shapefileOf(layer: FeatureLayer): Buffer {
+export function shapefileOf(layer: FeatureLayer, language: Language): Buffer {
   const shapes = layer.features.map(({ shape }) => shapeBytes(shape));
   const about = { bounds: shapes.length === 0 ? ([0, 0, 0, 0] as const) : layerBounds(layer), type: shapeTypes[layer.features[0]?.shape.kind ?? 'point'] };
-  const files = { shp: mainFile(shapes, about), shx: indexFile(shapes, about), dbf: attributeFile(layer), prj: Buffer.from(wgs84), cpg: Buffer.from('UTF-8') };
+  const table = attributeFile(layer);
+  const files = { shp: mainFile(shapes, about), shx: indexFile(shapes, about), dbf: table.bytes, prj: Buffer.from(wgs84), cpg: Buffer.from('UTF-8'), ...(table.cut.length > 0 ? { txt: Buffer.from(cutNotes(table.cut, language)) } : {}) };
   // The format of zip entries cannot say a time before 1980 and knows no time zone.
   const mtime = new Date(Math.max(layer.madeAt.getTime(), Date.UTC(1980, 0, 2)));
   return Buffer.from(zipSync(Object.fromEntries(Object.entries(files).map(([ending, bytes]) => [`${layer.name}.${ending}`, bytes])), { mtime }));

@@ -1,3 +1,4 @@
+import type { Language } from '../../../shared/contracts/common.ts';
 import { rowRuns } from '../../../shared/analysis/snapToRows.ts';
 import type { ExportFormatLine, ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
@@ -25,7 +26,7 @@ export function listFormats(): ExportFormatLine[] {
 }
 
 /** Zones as a file: those kept, or of a proposal the number asked for. Who took what away is noted. */
-export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null; language: string }): Promise<{ name: string; type: string; body: Buffer }> {
+export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null; language: Language }): Promise<{ name: string; type: string; body: Buffer }> {
   const format = exportFormats.find(({ id }) => id === asked.format);
   if (!format) throw new Unusable('unknownFormat', say('unknownFormat', { format: asked.format, formats: exportFormats.map(({ id }) => id).join(', ') }));
   const input = await exportInput(access, zoningId, { zones: asked.zones, language: asked.language, withLayers: format.withLayers === true });
@@ -34,7 +35,7 @@ export async function exportZones(access: Access, zoningId: string, asked: { for
   return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.about ? [format.about] : [])], format.extension), type: format.mediaType, body };
 }
 
-async function exportInput(access: Access, zoningId: string, { zones, language, withLayers }: { zones: number | null; language: string; withLayers: boolean }): Promise<ZoneExport> {
+async function exportInput(access: Access, zoningId: string, { zones, language, withLayers }: { zones: number | null; language: Language; withLayers: boolean }): Promise<ZoneExport> {
   const view = await viewZoning(access, zoningId, zones);
   if (view.zones.length === 0) throw new Clash('notReady', say('noZonesToExport'));
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();

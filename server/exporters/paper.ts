@@ -60,8 +60,12 @@ function signsOf(file: string): ReadonlySet<number> {
   return signs;
 }
 
+/** No line begins with what ends a phrase, nor breaks within quotation marks: French sets spaces there (Unicode Standard Annex 14, spaces in French typography). */
+const unbroken = (text: string) => text.replace(/ (?=[;:!?»])/g, '\u00A0').replace(/« /g, '«\u00A0');
+
 /** What the face can show: thin spaces become plain ones that do not break; characters it lacks lose their accents, and without a base letter become a question mark. */
-function printable(text: string, signs: ReadonlySet<number>): string {
+function printable(written: string, signs: ReadonlySet<number>): string {
+  const text = unbroken(written);
   if (/^[\n -~]*$/u.test(text)) return text;
   const has = (sign: string) => sign === '\n' || signs.has(sign.codePointAt(0)!);
   return [...text.normalize('NFC').replace(/[\u2009\u202F]/gu, '\u00A0')].map((sign) => (has(sign) ? sign : ([...sign.normalize('NFD')].filter((part) => has(part) && !/\p{M}/u.test(part)).join('') || '?'))).join('');

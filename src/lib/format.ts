@@ -1,4 +1,4 @@
-import { decimalsOf, shownValue, unitOf, type Quantity, type UnitSystem } from './units.ts';
+import { decimalsOf, shownValue, unitOf, unitWord, type Quantity, type UnitSystem } from './units.ts';
 
 /** How figures and dates are written: narrow space for thousands, true minus, narrow spaces around ±, unit after a narrow space. */
 export type Language = 'en' | 'es' | 'fr' | 'it' | 'pt';
@@ -44,6 +44,8 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
     point: new Intl.NumberFormat(region).formatToParts(0.5).find(({ type }) => type === 'decimal')?.value ?? '.',
     number,
     withUnit,
+    /** Unit of a measure, which is stored in English where it is a word. */
+    unitWord: (unit: string) => unitWord(unit, language),
     /** Figure alone, for a column whose head carries the unit. */
     figure: (quantity: Quantity, stored: number, decimals = decimalsOf(quantity, units)) => number(shownValue(quantity, stored, units), decimals),
     unit: (quantity: Quantity) => unitOf(quantity, units, language),

@@ -15,13 +15,18 @@ const quantities = {
 
 export type Quantity = keyof typeof quantities;
 
-/** Units that are words and not symbols; English stands in the table above. */
+/** Units that are words and not symbols, of quantities and of measures; the key is the English. */
 const unitWords: Readonly<Record<string, Readonly<Record<string, string>>>> = {
   'short tons': { es: 't cortas', fr: 't courtes', it: 't corte', pt: 't curtas' },
   'tons/ac': { es: 't cortas/ac', fr: 't courtes/ac', it: 't corte/ac', pt: 't curtas/ac' },
   'US gal': { es: 'gal EE. UU.', fr: 'gal US', it: 'gal US', pt: 'gal EUA' },
   'US gal/ton': { es: 'gal EE. UU./t corta', fr: 'gal US/t courte', it: 'gal US/t corta', pt: 'gal EUA/t curta' },
+  clusters: { es: 'racimos', fr: 'grappes', it: 'grappoli', pt: 'cachos' },
+  berries: { es: 'bayas', fr: 'baies', it: 'acini', pt: 'bagos' },
 };
+
+/** A unit as a language writes it; symbols are the same in all. */
+export const unitWord = (unit: string, language: string): string => unitWords[unit]?.[language] ?? unit;
 
 const freezingF = 32;
 
@@ -39,8 +44,7 @@ export function storedValue(quantity: Quantity, shown: number, system: UnitSyste
 
 /** Name of the unit in a language. `unitOf('fruitMass', 'us', 'fr')` is "t courtes". */
 export function unitOf(quantity: Quantity, system: UnitSystem, language: string): string {
-  const name = quantities[quantity][system][0];
-  return unitWords[name]?.[language] ?? name;
+  return unitWord(quantities[quantity][system][0], language);
 }
 
 export function decimalsOf(quantity: Quantity, system: UnitSystem): number {

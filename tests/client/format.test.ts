@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import { measures } from '../../shared/catalog/measures.ts';
 import { createFormat, minus, thinSpace } from '../../src/lib/format.ts';
 import { readNumber } from '../../src/lib/readNumber.ts';
 import { shownValue, storedValue } from '../../src/lib/units.ts';
@@ -50,6 +51,17 @@ describe('units', () => {
     for (const language of ['es', 'fr', 'it', 'pt'] as const) {
       const { unit } = createFormat({ language, units: 'us' });
       expect([unit('fruitMass'), unit('yield'), unit('volume'), unit('juice')].join('; ')).not.toMatch(/short|ton\b|tons|US gal/);
+    }
+  });
+
+  it('units of measures that are words are in the reader’s language, symbols and an estate’s own as they stand', () => {
+    expect(createFormat({ language: 'en', units: 'metric' }).unitWord('clusters')).toBe('clusters');
+    for (const language of ['es', 'fr', 'it', 'pt'] as const) {
+      const { unitWord } = createFormat({ language, units: 'metric' });
+      expect(measures.map(({ unit }) => unitWord(unit)).filter((unit) => /^(clusters|berries)$/.test(unit))).toEqual([]);
+      expect(new Set(measures.map(({ unit }) => unitWord(unit))).size).toBe(new Set(measures.map(({ unit }) => unit)).size);
+      expect(unitWord('°Brix')).toBe('°Brix');
+      expect(unitWord('leaves')).toBe('leaves');
     }
   });
 

@@ -15,6 +15,8 @@ export const mapKey: InjectionKey<ShallowRef<MlMap | null>> = Symbol('map');
 type Bounds = [number, number, number, number];
 /** Left free around what is shown whole. */
 export const mapMargin = 56;
+/** At the side of the buttons, so that a block's name, which may be longer than the block, does not lie under them. */
+const buttonMargin = 88;
 
 /** Makes the map in the given element, keeps its colours in step with the theme, and takes it down again. */
 export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null; /** Left free at the foot. */ foot: () => number }) {
@@ -34,7 +36,7 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
       made = new MlMap({
         container: container.value!,
         style: mapStyle(ink.value),
-        ...(bounds ? { bounds, fitBoundsOptions: { padding: mapMargin } } : { center: [0, 30], zoom: 1 }),
+        ...(bounds ? { bounds, fitBoundsOptions: { padding: { top: mapMargin, left: mapMargin, right: buttonMargin, bottom: mapMargin } } } : { center: [0, 30], zoom: 1 }),
         attributionControl: false, dragRotate: false, pitchWithRotate: false, touchPitch: false, maxZoom: 22, fadeDuration: 0, locale: { 'Map.Title': options.label() },
       });
     } catch {
@@ -60,7 +62,7 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
 
   function showBounds(bounds: Bounds, duration: number): void {
     shown = bounds;
-    map.value?.fitBounds(bounds, { padding: { top: mapMargin, left: mapMargin, right: mapMargin, bottom: options.foot() }, duration }, ours);
+    map.value?.fitBounds(bounds, { padding: { top: mapMargin, left: mapMargin, right: buttonMargin, bottom: options.foot() }, duration }, ours);
   }
 
   /** Shows it whole again when its room has changed, unless the person looks elsewhere by now. */

@@ -8,8 +8,8 @@ import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
 import type { ReportLayer, ReportZone, ZoneReport } from './zoneReport.ts';
 
 /** So that a block of two zones and two layers fills one page; more lines in the tables take their room from the map, down to the least. */
-const mapHeights = { A4: 212, Letter: 175 };
-const leastMapHeight = 140;
+const mapHeights = { A4: 168, Letter: 131 };
+const leastMapHeight = 130;
 const lineHeight = 17;
 const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
 

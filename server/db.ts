@@ -28,6 +28,7 @@ import * as m024 from '../migrations/024_weather_history.ts';
 import * as m025 from '../migrations/025_blocks_without_rows.ts';
 import * as m026 from '../migrations/026_row_side.ts';
 import * as m027 from '../migrations/027_zones_taken_up.ts';
+import * as m028 from '../migrations/028_zone_memberships.ts';
 
 /** Named by hand so that the same names are recorded from source and from the built code. */
 const migrations: Record<string, Knex.Migration> = {
@@ -58,6 +59,7 @@ const migrations: Record<string, Knex.Migration> = {
   '025_blocks_without_rows': m025,
   '026_row_side': m026,
   '027_zones_taken_up': m027,
+  '028_zone_memberships': m028,
 };
 
 // A date column is a calendar day, not an instant: keep it as text. Counts are small enough for numbers.

@@ -7,6 +7,7 @@ import { zonesGeoJson } from './zonesGeoJson.ts';
 import { zonesGeoTiff } from './zonesGeoTiff.ts';
 import { rowsKml, zonesKml } from './zonesKml.ts';
 import { zonesLayersGeoTiff } from './zonesLayersGeoTiff.ts';
+import { zonesMembershipGeoTiff } from './zonesMembershipGeoTiff.ts';
 import { zonesRowTable } from './zonesRowTable.ts';
 
 export interface ExportFormat {
@@ -15,8 +16,10 @@ export interface ExportFormat {
   extension: string;
   /** Wants the cells of the layers too. */
   withLayers?: boolean;
+  /** Wants the memberships too. */
+  withMemberships?: boolean;
   /** What it holds in place of the zones, for the file's name. */
-  about?: 'rows' | 'layers';
+  about?: 'rows' | 'layers' | 'membership';
   write: (input: ZoneExport) => Buffer | Promise<Buffer>;
 }
 
@@ -32,4 +35,5 @@ export const exportFormats: readonly ExportFormat[] = [
   { id: 'rowsKml', mediaType: 'application/vnd.google-earth.kml+xml', extension: 'kml', about: 'rows', write: rowsKml },
   { id: 'geotiff', mediaType: 'image/tiff', extension: 'tif', write: zonesGeoTiff },
   { id: 'layers', mediaType: 'image/tiff', extension: 'tif', withLayers: true, about: 'layers', write: zonesLayersGeoTiff },
+  { id: 'membership', mediaType: 'image/tiff', extension: 'tif', withMemberships: true, about: 'membership', write: zonesMembershipGeoTiff },
 ];

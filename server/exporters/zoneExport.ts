@@ -1,3 +1,4 @@
+import type { MembershipBands } from '../../shared/analysis/zoneMemberships.ts';
 import type { Language } from '../../shared/contracts/common.ts';
 import type { LonLat, MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
@@ -18,6 +19,8 @@ export interface ZoneExport {
   cells: { labels: Uint8Array; cols: number; rows: number; cellSizeM: number; epsg: number; x0: number; y0: number };
   /** The layers on the same cells; empty unless the format asks for them. */
   layers: readonly { name: string; unit: string; cells: Float32Array }[];
+  /** On the same cells too; null unless the format asks for them. */
+  memberships: MembershipBands | null;
 }
 
 export interface ExportedZone {

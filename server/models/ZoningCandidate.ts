@@ -8,5 +8,7 @@ export class ZoningCandidate extends EstateModel {
   declare zoneCount: number;
   declare labels: Buffer;
   declare doubt: Buffer | null;
+  /** Planes of `shared/analysis/zoneMemberships.ts` behind each other. */
+  declare memberships: Buffer | null;
   declare zones: unknown;
 }

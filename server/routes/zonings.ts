@@ -6,6 +6,7 @@ import { readDoubt } from '../services/zonings/doubt.ts';
 import { editZones, keepAsDraft, listEdits, restoreAsDraft, stepEdits } from '../services/zonings/editZones.ts';
 import { exportZones } from '../services/zonings/exportZones.ts';
 import { liveZones } from '../services/zonings/liveZones.ts';
+import { viewMemberships } from '../services/zonings/memberships.ts';
 import { nameZoning } from '../services/zonings/nameZoning.ts';
 import { todayOf } from '../services/estates.ts';
 import { keepPresence } from '../services/zonings/presence.ts';
@@ -44,6 +45,9 @@ export function zoningRoutes(): Router {
   });
   router.get('/zonings/:zoningId/doubt', allow('estate.see', 'read'), async (request, response) => {
     response.json(await readDoubt(accessOf(request), idParam(request, 'zoningId'), shownZones.parse(request.query).zones ?? null));
+  });
+  router.get('/zonings/:zoningId/memberships', allow('estate.see', 'read'), async (request, response) => {
+    response.json(await viewMemberships(accessOf(request), idParam(request, 'zoningId'), shownZones.parse(request.query).zones ?? null));
   });
   router.get('/zonings/:zoningId/seasons', allow('estate.see', 'read'), async (request, response) => {
     response.json(await compareSeasons(accessOf(request), idParam(request, 'zoningId')));

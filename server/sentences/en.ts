@@ -157,6 +157,8 @@ export const en = {
   unknownFormat: 'There is no format "{format}". Choose one of {formats}.',
   noZonesToExport: 'This zoning has no zones that could be exported.',
   noLayers: 'The layers of this zoning no longer lie on this outline. Place them again, or choose another format.',
+  noMemberships: 'This run dates from before memberships were kept. Run the zoning again with the same layers, then take them.',
+  noMembershipsOfOne: 'One zone has nothing to be shared with: ask for the memberships of two zones or more.',
   onlyDraftPublished: 'Only a draft can be published. Keep a proposal as a draft first.',
   noResultToCompare: 'Zoning {number} has no result to compare.',
   noZonesToPrint: 'This zoning has no zones that could be printed.',

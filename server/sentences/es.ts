@@ -158,6 +158,8 @@ export const es: Record<SentenceKey, string> = {
   unknownFormat: 'No hay ningún formato «{format}». Elija entre {formats}.',
   noZonesToExport: 'Esta zonificación no tiene zonas que se puedan exportar.',
   noLayers: 'Las capas de esta zonificación ya no están sobre este contorno. Colóquelas de nuevo o elija otro formato.',
+  noMemberships: 'Este cálculo es de antes de que se guardaran las pertenencias. Vuelva a calcular la zonificación con las mismas capas y descárguelas después.',
+  noMembershipsOfOne: 'Una sola zona no comparte nada con otra: pida las pertenencias de dos zonas o más.',
   onlyDraftPublished: 'Solo se puede publicar un borrador. Guarde antes una propuesta como borrador.',
   noResultToCompare: 'La zonificación {number} no tiene resultado que comparar.',
   noZonesToPrint: 'Esta zonificación no tiene zonas que se puedan imprimir.',

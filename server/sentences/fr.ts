@@ -158,6 +158,8 @@ export const fr: Record<SentenceKey, string> = {
   unknownFormat: 'Il n’y a pas de format « {format} ». Choisissez parmi {formats}.',
   noZonesToExport: 'Ce zonage n’a pas de zones à exporter.',
   noLayers: 'Les couches de ce zonage ne sont plus placées sur ce contour. Replacez-les, ou choisissez un autre format.',
+  noMemberships: 'Ce calcul date d’avant la conservation des appartenances. Relancez le zonage avec les mêmes couches, puis prenez-les.',
+  noMembershipsOfOne: 'Une seule zone ne partage rien avec une autre : demandez les appartenances de deux zones ou plus.',
   onlyDraftPublished: 'Seul un brouillon se publie. Gardez d’abord une proposition en brouillon.',
   noResultToCompare: 'Le zonage {number} n’a pas de résultat à comparer.',
   noZonesToPrint: 'Ce zonage n’a pas de zones à imprimer.',

@@ -158,6 +158,8 @@ export const it: Record<SentenceKey, string> = {
   unknownFormat: 'Non c’è un formato «{format}». Scelga tra {formats}.',
   noZonesToExport: 'Questa zonazione non ha zone da esportare.',
   noLayers: 'Gli strati di questa zonazione non cadono più su questo contorno. Li ricollochi o scelga un altro formato.',
+  noMemberships: 'Questo calcolo è di prima che si conservassero le appartenenze. Ricalcoli la zonazione con gli stessi strati, poi le scarichi.',
+  noMembershipsOfOne: 'Una sola zona non ha nulla da condividere: chieda le appartenenze di due zone o più.',
   onlyDraftPublished: 'Si può pubblicare solo una bozza. Prima tenga una proposta come bozza.',
   noResultToCompare: 'La zonazione {number} non ha un risultato da confrontare.',
   noZonesToPrint: 'Questa zonazione non ha zone da stampare.',

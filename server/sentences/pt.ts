@@ -158,6 +158,8 @@ export const pt: Record<SentenceKey, string> = {
   unknownFormat: 'Não existe o formato «{format}». Escolha entre {formats}.',
   noZonesToExport: 'Este zonamento não tem zonas que se possam exportar.',
   noLayers: 'As camadas deste zonamento já não estão sobre este contorno. Coloque-as de novo ou escolha outro formato.',
+  noMemberships: 'Este cálculo é anterior à conservação das pertenças. Volte a calcular o zonamento com as mesmas camadas e descarregue-as depois.',
+  noMembershipsOfOne: 'Uma só zona não partilha nada com outra: peça as pertenças de duas zonas ou mais.',
   onlyDraftPublished: 'Só um rascunho pode ser publicado. Guarde primeiro uma proposta como rascunho.',
   noResultToCompare: 'O zonamento {number} não tem resultado para comparar.',
   noZonesToPrint: 'Este zonamento não tem zonas que se possam imprimir.',

@@ -39,6 +39,12 @@ export function backOnto(grid: Grid, coarse: Grid, zones: CellZones): CellZones 
   return { labels: withGapsFilled(grid, labels), doubt };
 }
 
+/** A plane of coarser cells on the block's own: each cell inside takes what lies at its centre, and `missing` beyond them. */
+export function planeBackOnto(grid: Grid, coarse: Grid, plane: Uint8Array, missing: number): Uint8Array {
+  if (isOfSize(grid, coarse.cellSizeM)) return plane;
+  return Uint8Array.from(grid.inside, (inside, cell) => (inside === 0 ? missing : (plane[cellAt(coarse, cellCentre(grid, cell))] ?? missing)));
+}
+
 function isOfSize({ cellSizeM }: Grid, wantedM: number): boolean {
   return Math.abs(cellSizeM / wantedM - 1) < SAME_SIZE;
 }

@@ -59,11 +59,6 @@ export function numbersByMean(labels: Labels, layer: Cells): Uint8Array {
   return numbers;
 }
 
-/** Labels renumbered so that 1 has the lowest mean of the layer. */
-export function renumberedByMean(labels: Labels, layer: Cells): Labels {
-  return relabelled(labels, numbersByMean(labels, layer));
-}
-
 /**
  * Each cell takes the most frequent label of the 3 × 3 cells around it, itself included; a tie keeps the cell's own.
  * Cells outside neither change nor count. Common practice (majority or mode filter). A further pass can change only what

@@ -20,6 +20,7 @@ import { withStandOut, zonesThatShow } from './verdictStandOut.ts';
 import { checkOnFruit, withFruit, type FruitCheck } from './verdictFruit.ts';
 import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
 import { adviseZoneCount } from './zoneCount.ts';
+import { membershipBands, NO_MEMBERSHIP, type MembershipBands } from './zoneMemberships.ts';
 import { cleanZones } from './zoningClean.ts';
 import { evidenceTask, structuresOf, weighEvidence, type EvidenceTask, type ZoningEvidence } from './zoningEvidence.ts';
 import { featureTable, fitZones, streamOf, zonesOnGrid, type CellZones, type FeatureTable } from './zoningFit.ts';
@@ -91,6 +92,8 @@ export interface ZonesOfEveryNumber {
   readonly quality: readonly FitQuality[];
   /** Cleaned zones of all blocks for k = 1…6. */
   readonly cleaned: readonly CellZones[];
+  /** Of each of them, where they were asked for. */
+  readonly memberships: readonly (MembershipBands | null)[];
 }
 
 export function zonesOfEveryNumber({ options, stacked: { grid }, prepared: { layers }, weights }: ZoningGround, mark: StageMark = () => {}): ZonesOfEveryNumber {
@@ -100,8 +103,9 @@ export function zonesOfEveryNumber({ options, stacked: { grid }, prepared: { lay
   const quality = rateFits(table, fits, options.seed);
   mark('quality', 0.8);
   const cleaned = fits.map((fit) => cleanZones(grid, zonesOnGrid(grid, table, fit), { smallestPatchHa: options.smallestPatchHa, narrowestM: options.narrowestM, orderBy: layers[weights.findIndex((weight) => weight > 0)]!.cells }));
+  const memberships = fits.map((fit, i) => (options.memberships ? membershipBands(table, fit, { fitted: cleaned[i]!.fitted, cellCount: grid.inside.length }) : null));
   mark('clean-up', 0.85);
-  return { table, quality, cleaned };
+  return { table, quality, cleaned, memberships };
 }
 
 export interface ZoningParts {
@@ -111,7 +115,7 @@ export interface ZoningParts {
 }
 
 /** Number of zones, polygons and figures from what was made and found. */
-export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
+export function finishZoning(ground: ZoningGround, { made: { table, quality, cleaned, memberships }, edges, evidence }: ZoningParts, mark: StageMark = () => {}): ZoningResult {
   const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
   const followed = cleaned.map((zones) => alongRows(stacked.own, zones, options.borders));
   const own = followed.map(({ zones }) => zones);
@@ -130,7 +134,7 @@ export function finishZoning(ground: ZoningGround, { made: { table, quality, cle
   const drawn = own.map(({ labels }, i) => (options.drawAll || i + 1 === chosenK ? polygonise(input.grid, labels) : null));
   mark('polygons', 0.95);
   const used = input.layers.filter(({ id }) => layers.some((layer) => layer.id === id));
-  const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]! }));
+  const candidates = own.map((zones, i) => candidateOf(i + 1, { grid: input.grid, layers: used, zones, drawn: drawn[i]!, memberships: memberships[i]?.map((band) => stacked.own.planeOf(band, NO_MEMBERSHIP)) ?? null }));
   mark('statistics', 0.98);
   // The zones as drawn in every block, along the rows where that was asked for.
   const tested = (chosenK > 1 ? chosenK : count.best) - 1;

@@ -4,7 +4,7 @@
  */
 
 import type { Cells, Grid, Labels } from './grid.ts';
-import { highestLabel, majorityFiltered, renumberedByMean } from './labels.ts';
+import { highestLabel, majorityFiltered, numbersByMean, relabelled } from './labels.ts';
 import { withoutNarrow } from './labelsNarrow.ts';
 import { cellsForArea, sieveByBorder } from './sieve.ts';
 import { patchRuns } from './sieveRuns.ts';
@@ -20,13 +20,20 @@ export interface CleanOptions {
   readonly orderBy: Cells;
 }
 
+export interface CleanedZones extends CellZones {
+  /** By number from 1 on: which zone of the fit, 1…k, it was. */
+  readonly fitted: readonly number[];
+}
+
 /** Cells that clean-up moved to another zone count as wholly doubtful. */
-export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrowestM, orderBy }: CleanOptions): CellZones {
-  if (highestLabel(raw.labels) <= 1) return raw;
+export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrowestM, orderBy }: CleanOptions): CleanedZones {
+  if (highestLabel(raw.labels) <= 1) return { ...raw, fitted: [1] };
   const cleaned = withoutSmall(grid, majorityFiltered(raw.labels, grid.cols, MAJORITY_PASSES), { smallestPatchHa, narrowestM });
   const doubt = raw.doubt.slice();
   doubtWhereMoved(doubt, raw.labels, cleaned);
-  return { labels: renumberedByMean(cleaned, orderBy), doubt };
+  const numbers = numbersByMean(cleaned, orderBy);
+  const fitted = [...numbers.keys()].filter((zone) => numbers[zone]! > 0).sort((a, b) => numbers[a]! - numbers[b]!);
+  return { labels: relabelled(cleaned, numbers), doubt, fitted };
 }
 
 function doubtWhereMoved(doubt: Cells, before: Labels, after: Labels): void {

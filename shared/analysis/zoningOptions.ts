@@ -17,6 +17,7 @@ export const defaultZoningOptions: ZoningOptions = {
   principalComponents: false,
   seed: 1,
   drawAll: false,
+  memberships: false,
 };
 
 /** Defaults filled in and every option checked; layers and readings are checked against the grid. */

@@ -1,16 +1,17 @@
 /** Puts the outcome of the stages together into the rows of the zoning record. */
 
 import type { GapAtK } from './verdictGap.ts';
+import type { MembershipBands } from './zoneMemberships.ts';
 import type { ZoneCountAdvice } from './zoneCount.ts';
 import type { FeatureTable } from './zoningFit.ts';
 import type { FitQuality } from './zoningQuality.ts';
 import { describeZones, zoneDifferences, type ZoneStatsInput } from './zoningStats.ts';
 import type { ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes.ts';
 
-export function candidateOf(k: number, input: ZoneStatsInput): ZoningCandidate {
+export function candidateOf(k: number, input: ZoneStatsInput & { readonly memberships: MembershipBands | null }): ZoningCandidate {
   // Of several blocks zoned together one may lack a zone that the others have.
   const zones = describeZones(input).filter(({ areaM2 }) => areaM2 > 0);
-  return { k, labels: input.zones.labels, doubt: input.zones.doubt, zones, differences: zoneDifferences(zones, input.layers.flatMap(({ id, kind }) => (kind === 'number' ? [id] : []))) };
+  return { k, labels: input.zones.labels, doubt: input.zones.doubt, memberships: input.memberships, zones, differences: zoneDifferences(zones, input.layers.flatMap(({ id, kind }) => (kind === 'number' ? [id] : []))) };
 }
 
 /** One row for each k = 1…6: the figures of the fit, of the comparison with no structure, and of the cleaned zones. */

@@ -8,7 +8,7 @@
 
 import type { MultiPolygonXY } from '../geo/coordinates.ts';
 import { AnalysisError } from './analysisError.ts';
-import { backOnto, commonCellSizeM, onCellsOf } from './commonCells.ts';
+import { backOnto, commonCellSizeM, onCellsOf, planeBackOnto } from './commonCells.ts';
 import type { Cells, Grid } from './grid.ts';
 import type { CellZones } from './zoningFit.ts';
 import type { BlockInput, ZoningLayer } from './zoningTypes.ts';
@@ -26,11 +26,13 @@ export interface BlockPart {
   readonly block: BlockInput;
   /** The block's part of what was made of all, on its own cells. */
   readonly zonesOf: (zones: CellZones) => CellZones;
+  /** The same of a plane of bytes; `missing` stands where the block's cells reach beyond it. */
+  readonly planeOf: (plane: Uint8Array, missing: number) => Uint8Array;
 }
 
 export function stackBlocks(asked: BlockInput, askedWith: readonly BlockInput[]): StackedBlocks {
   if (askedWith.length === 0) {
-    const own = { block: asked, zonesOf: (zones: CellZones) => zones };
+    const own = { block: asked, zonesOf: (zones: CellZones) => zones, planeOf: (plane: Uint8Array) => plane };
     return { grid: asked.grid, layers: asked.layers, parts: [own], own };
   }
   for (const block of askedWith) assertFits(asked, block);
@@ -48,7 +50,7 @@ export function stackBlocks(asked: BlockInput, askedWith: readonly BlockInput[])
   const stacked: Grid = { ...grid, key: blocks.map((block) => block.grid.key).join(' '), cols: place.cols, rows: place.rows, share, inside, outlineXY: blocks.flatMap((block): MultiPolygonXY => [...block.grid.outlineXY]) };
   const parts = whole.map(({ block, onCells }, at): BlockPart => {
     const from = { grid: onCells.grid, cols: place.cols, start: place.firstRows[at]! };
-    return { block, zonesOf: ({ labels, doubt }) => backOnto(block.grid, from.grid, { labels: cut(labels, from), doubt: cut(doubt, from) }) };
+    return { block, zonesOf: ({ labels, doubt }) => backOnto(block.grid, from.grid, { labels: cut(labels, from), doubt: cut(doubt, from) }), planeOf: (plane, missing) => planeBackOnto(block.grid, from.grid, cut(plane, from), missing) };
   });
   return { grid: stacked, layers: layers.map((layer) => ({ ...layer, cells: stackedCells(layer.id, blocks, place) })), parts, own: parts.find(({ block }) => block === asked)! };
 }

@@ -8,6 +8,7 @@ import type { RowsXY } from '../geo/rowsLayout.ts';
 import type { VineTable } from '../geo/vines.ts';
 import type { SnapMode } from './snapToRows.ts';
 import type { StandardMethod } from './standardise.ts';
+import type { MembershipBands } from './zoneMemberships.ts';
 import type { VerdictResult } from './verdict.ts';
 import type { FruitCheck } from './verdictFruit.ts';
 
@@ -43,6 +44,8 @@ export interface ZoningOptions {
   readonly seed: number;
   /** Draw polygons for every number of zones, not for the chosen one alone. */
   readonly drawAll: boolean;
+  /** Keep how far every cell belongs to each zone. */
+  readonly memberships: boolean;
 }
 
 /** Readings of one measure of fruit, by grid cell (-1 outside the grid). They test zones and never make them. */
@@ -99,6 +102,8 @@ export interface ZoningCandidate {
   readonly zones: readonly Zone[];
   /** 0 (clear) … 1 (as near to another zone) per cell, NaN outside. */
   readonly doubt: Cells;
+  /** A byte a cell and zone number (`zoneMemberships.ts`). Null for one zone, and when nobody asked. */
+  readonly memberships: MembershipBands | null;
   /** Per layer the lowest and highest zone mean in the layer's own unit, and the spread within zones beside it. */
   readonly differences: readonly ZoneDifference[];
 }

@@ -188,6 +188,10 @@ const vineRun = z.object({ rowId: id, from: z.number().int(), to: z.number().int
 export const zoningDoubt = z.object({ vines: z.number().int(), doubtful: z.number().int(), byZone: z.array(z.object({ zone: zoneNumber, vines: z.number().int() })), runs: z.array(vineRun), geometry: multiPolygonGeometry.nullable() });
 export type ZoningDoubt = z.infer<typeof zoningDoubt>;
 
+/** Zones as a run found them and how far each cell belongs to each: bytes in base 64, those of `shared/analysis/zoneMemberships.ts`. `changedByHand`: the zones kept are others by now. */
+export const zoningMemberships = z.object({ changedByHand: z.boolean(), labels: z.string(), memberships: z.string() });
+export type ZoningMemberships = z.infer<typeof zoningMemberships>;
+
 /** Ground that keeps its rank in the block over the seasons of one kind of layer, changes it somewhat, or as much as chance would. */
 export const groundKinds = ['steady', 'moving', 'chance'] as const;
 const stableGround = z.object({

@@ -9,7 +9,7 @@ import Papa from 'papaparse';
 import * as shapefiles from 'shpjs';
 import initSqlJs from 'sql.js';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { decodeFloatCells } from '../../shared/analysis/cellBytes.ts';
+import { decodeFloatCells, decodeLabels } from '../../shared/analysis/cellBytes.ts';
 import { channels, zoneStyle } from '../../shared/catalog/zoneStyles.ts';
 import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
@@ -21,6 +21,7 @@ import { Block } from '../../server/models/Block.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Layer } from '../../server/models/Layer.ts';
 import { Person } from '../../server/models/Person.ts';
+import { ZoningCandidate } from '../../server/models/ZoningCandidate.ts';
 import { closeComputePool, openComputePool } from '../../server/workers/computePool.ts';
 import { hasTool, readWithGdal } from './support/gdal.ts';
 import { makePlateauBlock, workOnZoning, type PlateauBlock } from './support/makePlateauBlock.ts';
@@ -127,7 +128,7 @@ function expectRows(read: FeatureCollection<MultiLineString>, [row, from, to, zo
 describe('formats of zones', () => {
   it('are listed for menus', async () => {
     const { body } = await manager.get('/api/formats');
-    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'rowsGeojson', 'rowsShapefile', 'rowsKml', 'geotiff', 'layers']);
+    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'rowsGeojson', 'rowsShapefile', 'rowsKml', 'geotiff', 'layers', 'membership']);
     expect((await (await app.browser()).get('/api/formats')).status).toBe(401);
   });
 
@@ -263,6 +264,50 @@ describe('layers as a raster', () => {
     const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { bands: { description: string; unit: string; noDataValue: unknown; type: string }[]; stac?: { 'proj:epsg'?: number }; coordinateSystem: { wkt: string } };
     expect(info.bands).toMatchObject([{ description: name, unit: 'mg/L & more', noDataValue: 'NaN', type: 'Float32' }]);
     expect(info.coordinateSystem.wkt).toContain(String(place.epsg));
+  });
+});
+
+describe('memberships as a raster', () => {
+  it('are a band a zone as the run found them and the confusion index, on the cells of the layers', async () => {
+    const bytes = await bytesOf('membership');
+    const image = await (await fromArrayBuffer(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length) as ArrayBuffer)).getImage();
+    const { x0, y0, cellSizeM, inside } = gridOf(plot.ground);
+    expect([image.getOrigin().slice(0, 2), image.getResolution()[0]]).toEqual([[x0, y0], cellSizeM]);
+    const [first, second, confusion] = (await image.readRasters()) as unknown as Float32Array[];
+    const { labels } = await ZoningCandidate.query().findOne({ zoningId, zoneCount: 2 }).throwIfNotFound();
+    const zones = decodeLabels(labels);
+    let sure = 0;
+    inside.forEach((isInside, cell) => {
+      const shares = [first![cell]!, second![cell]!];
+      if (isInside === 0) return expect([...shares, confusion![cell]]).toEqual([Number.NaN, Number.NaN, Number.NaN]);
+      expect(Math.abs(shares[0]! + shares[1]! - 1)).toBeLessThan(0.005);
+      expect(confusion![cell]).toBeCloseTo(1 - Math.abs(shares[0]! - shares[1]!), 5);
+      if (shares[zones[cell]! - 1]! > 0.9) sure += 1;
+    });
+    // Two plateaus with a narrow border.
+    expect(sure).toBeGreaterThan(0.8 * inside.filter((one) => one === 1).length);
+  });
+
+  it.skipIf(!hasTool('gdalinfo'))('are read by GDAL with reference, no-data and names', async () => {
+    const file = join(folder, 'membership.tif');
+    writeFileSync(file, await bytesOf('membership'));
+    const info = JSON.parse(execFileSync('gdalinfo', ['-json', file], { encoding: 'utf8' })) as { bands: { description: string; noDataValue: unknown; type: string }[]; coordinateSystem: { wkt: string } };
+    expect(info.bands.map(({ description, noDataValue, type }) => [description, noDataValue, type])).toEqual(['membership 1', 'membership 2', 'confusion index'].map((name) => [name, 'NaN', 'Float32']));
+    expect(info.coordinateSystem.wkt).toContain(String(place.epsg));
+  });
+
+  it('say that the zones were changed by hand, and are refused where there are none', async () => {
+    const read = async (query = '') => manager.get(`${base}/zonings/${zoningId}/memberships${query}`);
+    expect((await read()).body).toMatchObject({ changedByHand: true });
+    expect((await read('?zones=3')).body).toMatchObject({ changedByHand: false });
+    expect((await read('?zones=1')).body).toMatchObject({ status: 409, code: 'noMemberships', detail: expect.stringContaining('One zone') as string });
+    const kept = await ZoningCandidate.query().findOne({ zoningId, zoneCount: 2 }).throwIfNotFound();
+    const { memberships } = kept;
+    await kept.$query().patch({ memberships: null });
+    expect((await read()).body).toMatchObject({ status: 409, code: 'noMemberships', detail: expect.stringContaining('Run the zoning again') as string });
+    expect((await take('membership')).status).toBe(409);
+    await kept.$query().patch({ memberships });
+    expect((await read()).status).toBe(200);
   });
 });
 

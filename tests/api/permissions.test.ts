@@ -168,6 +168,7 @@ const doors: Door[] = [
   door('get', `/zonings/${nobody}`, 'estate.see', 'read'),
   door('get', `/zonings/${nobody}/labels`, 'estate.see', 'read'),
   door('get', `/zonings/${nobody}/doubt`, 'estate.see', 'read'),
+  door('get', `/zonings/${nobody}/memberships`, 'estate.see', 'read'),
   door('get', `/zonings/${nobody}/seasons`, 'estate.see', 'read'),
   door('post', `/zonings/${nobody}/presence`, 'zones.edit', 'propose'),
   door('patch', `/zonings/${nobody}`, 'zones.edit', 'propose'),

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { comparedWith, ofBlock, shownZones, zonesExport, zonesReport } from '../../../shared/contracts/queries.ts';
-import { newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningDoubt, zoningLine, zoningPresence, zoningSeasons, zoningView } from '../../../shared/contracts/zonings.ts';
+import { newZoning, publishEffects, publishRequest, revisionOnly, zoneEditLine, zoneEditRequest, zoningChange, zoningComparison, zoningDoubt, zoningLine, zoningMemberships, zoningPresence, zoningSeasons, zoningView } from '../../../shared/contracts/zonings.ts';
 import { belowEstate, listOf, type Operations } from './operation.ts';
 
 /** Zonings: asked for, changed by hand, published, taken out. */
@@ -12,6 +12,7 @@ export const zonings: Operations = belowEstate({
   'get /zonings/:zoningId': { does: 'A zoning with verdict, evidence and zones', query: shownZones, answer: zoningView },
   'get /zonings/:zoningId/labels': { does: 'Zone numbers cell by cell, a byte a cell; the grid is in the header x-grid-key', query: shownZones, type: 'application/octet-stream' },
   'get /zonings/:zoningId/doubt': { does: 'Vines that fit another zone nearly as well, counted and drawn', query: shownZones, answer: zoningDoubt },
+  'get /zonings/:zoningId/memberships': { does: 'How far each cell belongs to each zone that the run found, a byte a cell and zone in steps of 1/250, 255 where there is none; planes in the order of the zones', query: shownZones, answer: zoningMemberships },
   'get /zonings/:zoningId/seasons': { does: 'Agreement with the zones and layers of other seasons', answer: zoningSeasons },
   'post /zonings/:zoningId/presence': { does: 'Says that one has the zones open to edit; answers who else has', answer: zoningPresence },
   'patch /zonings/:zoningId': { does: 'Name a zoning, or keep a number of its zones as a draft', body: zoningChange, answer: zoningView },

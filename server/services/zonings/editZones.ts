@@ -93,7 +93,7 @@ export async function restoreAsDraft(access: Access, zoningId: string, today: st
     const { blockId, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones } = old;
     const copy = await Zoning.query(trx).insertAndFetch({ estateId: access.estateId, blockId, seasonId: season.id, options, seed, engineVersion, gridKey, verdict, evidence, advisedZones, chosenZones, name: old.name, number: last!.number + 1, state: 'draft', baseLabels: Buffer.from(encodeCells(map.labels)), baseZones: [...map.zones], createdBy: access.personId });
     const candidates = await ZoningCandidate.query(trx).where({ estateId: access.estateId, zoningId: old.id });
-    if (candidates.length > 0) await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, zones })));
+    if (candidates.length > 0) await ZoningCandidate.query(trx).insert(candidates.map(({ zoneCount, labels, doubt, memberships, zones }) => ({ estateId: access.estateId, zoningId: copy.id, zoneCount, labels, doubt, memberships, zones })));
     await storeZones(trx, copy, { ground, map, drawn });
     await writeAudit(trx, access, { action: 'zones.restore', subjectType: 'zoning', subjectId: copy.id, subjectName: ground.block.name, after: { from: old.number } });
     return { id: copy.id };

@@ -9,7 +9,7 @@ import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, Unusable } from '../../errors.ts';
 import { fileName } from '../../exporters/fileName.ts';
-import { exportFormats } from '../../exporters/formats.ts';
+import { exportFormats, type ExportFormat } from '../../exporters/formats.ts';
 import type { ExportedRun, ExportedZone, ZoneExport } from '../../exporters/zoneExport.ts';
 import { gridOf, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { loadBlockLayers, storedCells } from '../../ground/zoneLayers.ts';
@@ -17,6 +17,7 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
+import { loadMembershipBands } from './memberships.ts';
 import { readLabels, viewZoning } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -29,13 +30,13 @@ export function listFormats(): ExportFormatLine[] {
 export async function exportZones(access: Access, zoningId: string, asked: { format: string; zones: number | null; language: Language }): Promise<{ name: string; type: string; body: Buffer }> {
   const format = exportFormats.find(({ id }) => id === asked.format);
   if (!format) throw new Unusable('unknownFormat', say('unknownFormat', { format: asked.format, formats: exportFormats.map(({ id }) => id).join(', ') }));
-  const input = await exportInput(access, zoningId, { zones: asked.zones, language: asked.language, withLayers: format.withLayers === true });
+  const input = await exportInput(access, zoningId, { zones: asked.zones, language: asked.language, format });
   const body = await format.write(input);
   await writeAudit(Zoning.knex(), access, { action: 'zones.export', subjectType: 'zoning', subjectId: zoningId, subjectName: input.blockName, after: { format: format.id, bytes: body.length } });
   return { name: fileName([input.blockName, input.zoningName || `zones ${input.zoningNumber}`, ...(format.about ? [format.about] : [])], format.extension), type: format.mediaType, body };
 }
 
-async function exportInput(access: Access, zoningId: string, { zones, language, withLayers }: { zones: number | null; language: Language; withLayers: boolean }): Promise<ZoneExport> {
+async function exportInput(access: Access, zoningId: string, { zones, language, format }: { zones: number | null; language: Language; format: ExportFormat }): Promise<ZoneExport> {
   const view = await viewZoning(access, zoningId, zones);
   if (view.zones.length === 0) throw new Clash('notReady', say('noZonesToExport'));
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
@@ -47,7 +48,8 @@ async function exportInput(access: Access, zoningId: string, { zones, language, 
   const exported: ExportedZone[] = view.zones.map(({ number, name, colour, areaM2, vines, missing, geometry }) => ({ number, name, colour, areaM2, vines, missing, polygonsLonLat: geometry.coordinates as unknown as MultiPolygonLonLat }));
   return {
     estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, language, madeAt: zoning.createdAt,
-    zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 }, layers: withLayers ? await layerCells(access, view, zoning) : [],
+    zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 }, layers: format.withLayers ? await layerCells(access, view, zoning) : [],
+    memberships: format.withMemberships ? await loadMembershipBands(access, zoningId, view.shown) : null,
   };
 }
 

@@ -1,5 +1,6 @@
 import { encodeCells } from '../../../shared/analysis/cellBytes.ts';
 import { cellAt } from '../../../shared/analysis/grid.ts';
+import { joinedBands } from '../../../shared/analysis/zoneMemberships.ts';
 import { defaultZoningOptions } from '../../../shared/analysis/zoningOptions.ts';
 import type { BlockInput, ZoningInput, ZoningReadings, ZoningResult } from '../../../shared/analysis/zoningTypes.ts';
 import { zoningOptions, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
@@ -43,7 +44,7 @@ async function inputOf(zoning: Zoning, ground: BlockVines): Promise<ZoningInput>
   if (zoning.gridKey !== gridOf(ground).key) throw new Clash('outlineChanged', say('outlineChangedSinceAsked', { block: ground.block.name }));
   const together = await Promise.all(options.withBlocks.map(async (blockId) => blockInput(zoning, await loadBlockVines(zoning.estateId, blockId), options)));
   const { zones, standardise, smoothingM, smallestPatchHa, narrowestRows, borders, principalComponents } = options;
-  return { ...(await blockInput(zoning, ground, options)), together, options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true } };
+  return { ...(await blockInput(zoning, ground, options)), together, options: { ...defaultZoningOptions, zones, standardise, smoothingM, smallestPatchHa, narrowestM: narrowestRows * ground.block.rowSpacingM, borders, principalComponents, seed: zoning.seed, drawAll: true, memberships: true } };
 }
 
 async function blockInput(zoning: Zoning, ground: BlockVines, options: ZoningRequestOptions): Promise<BlockInput> {
@@ -78,8 +79,9 @@ async function storeResult(zoning: Zoning, result: ZoningResult, fruitDays: Reco
     if (!stillWanted) return;
     await ZoningCandidate.query(trx).where({ estateId: zoning.estateId, zoningId: zoning.id }).delete();
     await ZoningCandidate.query(trx).insert(
-      candidates.map(({ k, labels, doubt, zones }) => ({
+      candidates.map(({ k, labels, doubt, memberships, zones }) => ({
         estateId: zoning.estateId, zoningId: zoning.id, zoneCount: k, labels: Buffer.from(encodeCells(labels)), doubt: Buffer.from(encodeCells(doubt)),
+        memberships: memberships === null ? null : Buffer.from(encodeCells(joinedBands(memberships))),
         zones: plainFigures({ zones: zones.map((zone) => ({ ...zone, polygonsXY: null })) }),
       })),
     );

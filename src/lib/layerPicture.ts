@@ -1,4 +1,4 @@
-import { defineGrid } from '../../shared/analysis/grid.ts';
+import { defineGrid, type Grid } from '../../shared/analysis/grid.ts';
 import { layerType, type RampName } from '../../shared/catalog/layerTypes.ts';
 import type { BlockLayerView } from '../../shared/contracts/layers.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
@@ -26,20 +26,25 @@ export interface LayerPicture {
 export function layerPicture(layer: BlockLayerView, block: { boundary: { coordinates: unknown }; cellSizeM: number }, cells: ArrayLike<number>): LayerPicture | null {
   const grid = defineGrid(block.boundary.coordinates as MultiPolygonLonLat, block.cellSizeM);
   if (grid.key !== layer.gridKey || cells.length !== grid.cols * grid.rows) return null;
-  const corner = (col: number, row: number): Corner => {
-    const [lon, lat] = fromUtm([grid.x0 + col * grid.cellSizeM, grid.y0 - row * grid.cellSizeM], grid.epsg);
-    return [lon, lat];
-  };
   return {
     id: layer.id,
     cells,
     columns: grid.cols,
     rows: grid.rows,
-    cornersLonLat: [corner(0, 0), corner(grid.cols, 0), corner(grid.cols, grid.rows), corner(0, grid.rows)],
+    cornersLonLat: cornersOfGrid(grid),
     ramp: layerType(layer.type).ramp,
     range: shownRange(layer),
     own: ownClassColours(layer.classes),
   };
+}
+
+/** Corners of the outer cell edges, as a picture on the map wants them. */
+export function cornersOfGrid({ x0, y0, cols, rows, cellSizeM, epsg }: Grid): LayerPicture['cornersLonLat'] {
+  const corner = (col: number, row: number): Corner => {
+    const [lon, lat] = fromUtm([x0 + col * cellSizeM, y0 - row * cellSizeM], epsg);
+    return [lon, lat];
+  };
+  return [corner(0, 0), corner(cols, 0), corner(cols, rows), corner(0, rows)];
 }
 
 /** Ends of the colour ramp: all but the outermost 2 % of the cells, so that a few odd ones do not flatten the picture. */

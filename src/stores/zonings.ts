@@ -1,6 +1,6 @@
 import { defineStore } from 'pinia';
 import type { z } from 'zod';
-import type { newZoning, PublishEffects, ZoneEditLine, ZoneOperation, ZoningComparison, ZoningDoubt, ZoningLine, ZoningPresence, ZoningSeasons, ZoningView } from '../../shared/contracts/zonings.ts';
+import type { newZoning, PublishEffects, ZoneEditLine, ZoneOperation, ZoningComparison, ZoningDoubt, ZoningLine, ZoningMemberships, ZoningPresence, ZoningSeasons, ZoningView } from '../../shared/contracts/zonings.ts';
 import { http } from '../lib/http.ts';
 
 interface Listed<Item> {
@@ -25,11 +25,12 @@ export const useZoningsStore = defineStore('zonings', () => {
   const compare = (estateId: string, zoningId: string, { other, zones = null }: { other: string; zones?: number | null }) => http.get<ZoningComparison>(`${base(estateId)}/zonings/${zoningId}/compare`, { query: { with: other, zones } });
   const name = (estateId: string, zoningId: string, called: string) => http.patch<ZoningView>(`${base(estateId)}/zonings/${zoningId}`, { name: called });
   const doubt = (estateId: string, zoningId: string, zones: number | null = null) => http.get<ZoningDoubt>(`${base(estateId)}/zonings/${zoningId}/doubt`, { query: { zones } });
+  const memberships = (estateId: string, { id, zones }: { id: string; zones: number | null }) => http.get<ZoningMemberships>(`${base(estateId)}/zonings/${id}/memberships`, { query: { zones } });
   const seasons = (estateId: string, zoningId: string) => http.get<ZoningSeasons>(`${base(estateId)}/zonings/${zoningId}/seasons`);
   const presence = (estateId: string, zoningId: string) => http.post<ZoningPresence>(`${base(estateId)}/zonings/${zoningId}/presence`);
   const labels = async (estateId: string, zoningId: string) => new Uint8Array(await http.getBytes(`${base(estateId)}/zonings/${zoningId}/labels`));
   const exportFile = (estateId: string, zoning: { id: string; fileName: string; zones: number | null }, format: string) => http.download(`${base(estateId)}/zonings/${zoning.id}/export?format=${format}${zoning.zones === null ? '' : `&zones=${zoning.zones}`}`, zoning.fileName);
   const report = (estateId: string, zoning: { id: string; fileName: string; zones: number | null }, size: string) => http.download(`${base(estateId)}/zonings/${zoning.id}/report?size=${size}${zoning.zones === null ? '' : `&zones=${zoning.zones}`}`, zoning.fileName);
 
-  return { list, view, run, stop, keep, edits, edit, step, effects, publish, restore, compare, name, doubt, seasons, presence, labels, exportFile, report };
+  return { list, view, run, stop, keep, edits, edit, step, effects, publish, restore, compare, name, doubt, memberships, seasons, presence, labels, exportFile, report };
 });

@@ -9,6 +9,7 @@ import * as shapefiles from 'shpjs';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import type { ZoningView } from '../../shared/contracts/zonings.ts';
 import { startApplication, type Application } from './support/application.ts';
+import { readMap } from './support/mapContents.ts';
 
 /** The reader's declared types name only the part that the importers use. */
 const shp = (shapefiles as unknown as { default: (zip: ArrayBuffer) => Promise<FeatureCollection<MultiPolygon>> }).default;
@@ -30,6 +31,7 @@ afterAll(async () => {
 
 const read = async <Shape>(page: Page, path: string) => (await (await page.request.get(`${app.url}/api${estatePath.replace('/e/', '/estates/')}${path}`)).json()) as Shape;
 const zoning = (page: Page) => read<ZoningView>(page, `/zonings/${zoningId}`);
+const pictures = async (page: Page) => (await readMap(page, 'zones', 'zone-fill'))?.pictures ?? [];
 const done = (page: Page, words: string | RegExp) => page.locator('ol li').filter({ hasText: words }).first().waitFor();
 
 /** Corners given as text, as somebody without a pointer gives them. */
@@ -71,7 +73,20 @@ describe('from layers to zones in force', () => {
     await page.getByText(/vines? changes? zone/).first().waitFor();
     await page.getByRole('button', { name: /2 zones/ }).first().click();
     await page.getByText(/fits? another zone nearly as well/).first().waitFor();
+    await page.getByRole('button', { name: 'Show certainty on the map' }).click();
+    const reading = page.locator('.estate-map').getByRole('status');
+    await reading.getByText(/arrow keys/).waitFor();
+    await page.getByText('Certainty of zones').waitFor();
+    // The middle of the map, by keys alone.
+    await page.locator('.estate-map canvas').focus();
+    await page.keyboard.press('Enter');
+    await reading.getByText(/^Zone [12]: [01]\.\d\d\. Next zone [12]: [01]\.\d\d\.$/).waitFor();
+    const [own, next] = [...(await reading.innerText()).matchAll(/: ([01]\.\d\d)/g)].map(([, share]) => Number(share));
+    expect(own! + next!).toBeCloseTo(1, 1);
+    await expect.poll(() => pictures(page)).toContain('cells-certainty');
     await expectAccessible(page);
+    await page.getByRole('button', { name: 'Hide certainty on the map' }).click();
+    await expect.poll(() => pictures(page)).toEqual(['relief']);
     await page.getByRole('button', { name: /Keep two as a draft/ }).click();
     await page.waitForURL(/\/edit$/);
     await context.close();

@@ -75,6 +75,8 @@ export interface MapRaster {
   /** Values at the ends of the ramp; classes ignore it. */
   readonly range: readonly [low: number, high: number];
   readonly opacity?: number;
+  /** How much of its colour each cell has, 0…1, the rest being grey; all of it when not given. */
+  readonly strength?: ArrayLike<number>;
   /** Colours that people gave classes, by class number. */
   readonly own?: Readonly<Record<number, string>>;
 }

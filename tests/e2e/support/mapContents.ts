@@ -6,6 +6,7 @@ interface Source {
 interface MapOnPage {
   getSource: (id: string) => { serialize: () => { data: Source } } | undefined;
   queryRenderedFeatures: (options: { layers: readonly string[] }) => { readonly properties: Readonly<Record<string, unknown>> }[];
+  getStyle: () => { readonly layers: readonly { readonly id: string; readonly type: string }[] };
   loaded: () => boolean;
 }
 interface Node {
@@ -18,6 +19,8 @@ interface Node {
 export interface MapContents {
   readonly held: Source['features'];
   readonly drawnIds: readonly string[];
+  /** Pictures on the map, such as the relief and cells, from below. */
+  readonly pictures: readonly string[];
 }
 
 /** Reads the map itself through the components that share it: what a layer holds is not written anywhere on the page. */
@@ -39,6 +42,6 @@ export function readMap(page: Page, source: string, layer: string): Promise<MapC
     const map = find((document.querySelector('#app') as unknown as { _vnode: Node })._vnode);
     if (!map?.loaded()) return null;
     const drawn = map.queryRenderedFeatures({ layers: [layer] });
-    return { held: map.getSource(source)?.serialize().data.features ?? [], drawnIds: [...new Set(drawn.map(({ properties }) => String(properties.id)))] };
+    return { held: map.getSource(source)?.serialize().data.features ?? [], drawnIds: [...new Set(drawn.map(({ properties }) => String(properties.id)))], pictures: map.getStyle().layers.filter(({ type }) => type === 'raster').map(({ id }) => id) };
   }, { source, layer });
 }

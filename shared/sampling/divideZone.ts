@@ -1,4 +1,6 @@
+import { groupBy } from '../groupBy.ts';
 import { blockSampleSize } from './blockSampleSize.ts';
+import { flagWithinGroups } from './outliers.ts';
 import { groupVariance } from './pooling.ts';
 import { sampleSize } from './sampleSize.ts';
 import { moderateVariance } from './shrinkage.ts';
@@ -29,6 +31,10 @@ export interface Demand {
   readonly wanted?: 'parts' | 'whole';
   readonly kind?: 'sd' | 'cv';
   readonly minimum?: number;
+  /** Whether readings far from the rest of their part count: as in the plan, or a division would promise what its plan does not ask. */
+  readonly outliers?: 'out' | 'in';
+  /** Of the measure's figures. */
+  readonly resolution?: number;
 }
 
 export interface DivideQuestion extends Demand {
@@ -84,10 +90,10 @@ export interface ZoneParts {
  * Parts that follow rows are not quite those of the layer's line, and one vine on the wrong side can double a count.
  */
 export function judgeParts(question: Demand, { cut, sides, vines }: ZoneParts): Division | null {
-  const { margin, confidence, presentCount, wanted = 'parts', kind = 'sd', minimum } = question;
+  const { margin, confidence, presentCount, wanted = 'parts', minimum } = question;
   if (sides.some((side) => side.length < MINIMUM_READINGS)) return null;
   if (Math.min(...vines) < MINIMUM_SHARE * (vines[0] + vines[1])) return null;
-  const own = sides.map((side) => withinVisits(side, kind));
+  const own = sides.map((side) => withinVisits(side, question));
   const common = pooledVariance(own);
   if (common.df <= 1) return null;
   const prior = { variance: (common.variance * common.df) / (common.df - 1), df: Math.min(PRIOR_DF, common.df) };
@@ -99,10 +105,10 @@ export function judgeParts(question: Demand, { cut, sides, vines }: ZoneParts): 
   return { cut, vines, spreads, counts, total, saving, recommended: saving >= WORTH_DIVIDING };
 }
 
-function withinVisits(readings: readonly ZoneReading[], kind: 'sd' | 'cv'): VariancePart {
-  const visits = new Map<string, number[]>();
-  for (const { visit, value } of readings) visits.set(visit, [...(visits.get(visit) ?? []), value]);
-  return pooledVariance([...visits.values()].map((values) => groupVariance(values, kind)));
+function withinVisits(readings: readonly ZoneReading[], { kind = 'sd', outliers = 'in', resolution = 0 }: Demand): VariancePart {
+  const visits = [...groupBy(readings, ({ visit }) => visit).values()].map((group) => group.map(({ value }) => value));
+  const flags = outliers === 'in' ? null : flagWithinGroups(visits, { relative: kind === 'cv', resolution });
+  return pooledVariance(visits.map((values, i) => groupVariance(values.filter((_, j) => !flags?.[i]![j]), kind)));
 }
 
 function countParts(parts: { vines: readonly [number, number]; spreads: [number, number]; margin: number; confidence: number; wanted: 'parts' | 'whole'; minimum?: number }): [number, number] {

@@ -295,15 +295,29 @@ describe('dividing a zone', () => {
     expect(judgeParts(demand, { cut: onLine.cut, sides, vines: [79, 321] })).toBeNull();
   });
 
+  it('leaves out of a part what its plan leaves out, so that both ask for the same', () => {
+    const two = readings(seededRandom(4), (layer) => (layer < 0.4 ? 20 : 27));
+    const demand = { margin: 0.5, confidence: 0.95, presentCount: 66, outliers: 'out' as const, resolution: 0.1 };
+    // A run along the row takes two vines of the poor part into the rich one, where they lie far off.
+    const sides = [two.slice(0, 14), two.slice(14)] as const;
+    const drawn = judgeParts(demand, { cut: 0.35, sides, vines: [140, 260] })!;
+    const clean = judgeParts(demand, { cut: 0.35, sides: [two.slice(0, 14), two.slice(16)], vines: [140, 260] })!;
+    expect(drawn.counts).toEqual(clean.counts);
+    expect(judgeParts({ ...demand, outliers: 'in' }, { cut: 0.35, sides, vines: [140, 260] })!.counts[1]).toBeGreaterThan(1.5 * drawn.counts[1]);
+  });
+
   it('is hardly ever advised when the readings only scatter', () => {
     const random = seededRandom(9);
-    let advised = 0;
+    const advised = { in: 0, out: 0 };
     for (let trial = 0; trial < 200; trial++) {
       const noise = readings(random, () => 22);
-      const division = bestDivision({ readings: noise, layerAtVines: vines, margin: 0.25, confidence: 0.95, presentCount: 33 });
-      if (division!.recommended) advised += 1;
+      for (const outliers of ['in', 'out'] as const) {
+        const division = bestDivision({ readings: noise, layerAtVines: vines, margin: 0.25, confidence: 0.95, presentCount: 33, outliers });
+        if (division!.recommended) advised[outliers] += 1;
+      }
     }
-    expect(advised).toBeLessThanOrEqual(2);
+    expect(advised.in).toBeLessThanOrEqual(2);
+    expect(advised.out).toBeLessThanOrEqual(2);
   });
 
   it('does not mistake two visits for two populations', () => {

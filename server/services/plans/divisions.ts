@@ -59,7 +59,7 @@ function demandOf({ answer, choices, basis }: { answer: PlanAnswer; choices: Pla
   const isShare = measure.margin.kind === 'relative';
   const margin = kind === 'cv' ? (isShare ? measure.margin.value : measure.margin.value / mean) : isShare ? measure.margin.value * mean : measure.margin.value;
   const presentCount = answer.counts.zones[at]!.counts[answer.question.measures.indexOf(measure)]!;
-  return { margin, confidence: measure.confidence, kind, presentCount, wanted: choices.question === 'block' ? 'whole' : 'parts', minimum: choices.minimum ?? basis.settings.floorVines };
+  return { margin, confidence: measure.confidence, kind, presentCount, wanted: choices.question === 'block' ? 'whole' : 'parts', minimum: choices.minimum ?? basis.settings.floorVines, outliers: choices.spread.outliers, resolution: 10 ** -basis.measures.find((one) => one.code === code)!.decimals };
 }
 
 /** Layers of numbers that lie on the block as it is now. */

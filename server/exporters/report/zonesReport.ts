@@ -7,15 +7,33 @@ import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
 import type { ReportLayer, ReportZone, ZoneReport } from './zoneReport.ts';
 
-/** So that a block of two zones and two layers fills one page; more lines in the tables take their room from the map, down to the least. */
-const mapHeights = { A4: 168, Letter: 131 };
-const leastMapHeight = 130;
-const lineHeight = 17;
+/** Points; the map takes what the words leave of one page. Lower it could not be read. */
+const mapHeights = { least: 120, most: 320 };
+const mapStep = 20;
 const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
 
-/** The report of a zoning as PDF, for people without the program: verdict, map in the zones' colours with marks that tell them apart in grey, zones, layers, limits. */
+/**
+ * The report of a zoning as PDF, for people without the program: verdict, map in the zones' colours with marks that tell them apart in grey, zones, layers, limits.
+ * On one page with the highest map that leaves room for the words; where even the lowest does not, on two with a map of full height.
+ */
 export function zonesReport(report: ZoneReport): Promise<Buffer> {
   const words = wordsOf(report);
+  const lowest = composed(report, words, mapHeights.least);
+  let page = lowest;
+  const isLong = pagesOf(lowest) > 1;
+  const room = isLong ? Infinity : lowest.page.height - margin - lowest.y;
+  for (let height = Math.min(mapHeights.most, mapHeights.least + room); height > mapHeights.least; height -= mapStep) {
+    page = composed(report, words, height);
+    if (isLong || pagesOf(page) === 1) break;
+    page = lowest;
+  }
+  footers(page, report, words);
+  return page.toBytes();
+}
+
+const pagesOf = (page: Paper) => page.bufferedPageRange().count;
+
+function composed(report: ZoneReport, words: Words, mapHeight: number): Paper {
   const title = filled(words.texts.title as string, { block: report.blockName });
   const page = openPage({ size: report.size, title, at: report.today });
   page.font('bold').fontSize(20).text(title, margin, margin);
@@ -25,8 +43,6 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(verdict);
   page.moveDown(0.4);
   const mapTop = page.y;
-  const lines = (report.zones.length > 1 ? report.zones.length - 1 : 0) + Math.max(0, report.layers.length - 2);
-  const mapHeight = Math.max(leastMapHeight, mapHeights[report.size] - lines * lineHeight);
   drawMap(page, report, { x: margin, y: mapTop, width: innerWidth(page), height: mapHeight });
   page.x = margin;
   page.y = mapTop + mapHeight + 6;
@@ -38,8 +54,7 @@ export function zonesReport(report: ZoneReport): Promise<Buffer> {
   layerTable(page, report, words);
   method(page, report, words);
   limits(page, report, words);
-  footers(page, report, words);
-  return page.toBytes();
+  return page;
 }
 
 interface Words {

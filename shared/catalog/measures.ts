@@ -31,6 +31,15 @@ export interface Measure {
 const rankine = 'Rankine, Cellier & Boehm 1962, between-vine and within-vine parts';
 const pagay = 'Pagay & Cheng 2010, Am. J. Enol. Vitic. 61:61';
 const judgement = 'planning judgement, replace after one season';
+const lowerEnd = 'Aizpurua et al. 2006; planning judgement for the lower end';
+const binomial = 'binomial for 4 % missing, a third more because gaps come together; planning judgement';
+/** Sources that are said in words, by what the words are called: an estate keeps its source as text, its own or one of these. */
+const saidSources: Readonly<Record<string, string>> = { [rankine]: 'rankine', [judgement]: 'judgement', [lowerEnd]: 'lowerEnd', [binomial]: 'binomial' };
+
+/** What the words for a source are called; null where it stands as it was written. */
+export function spreadSourceWords(source: string): string | null {
+  return saidSources[source] ?? null;
+}
 
 /** Measures every estate starts with; an estate adds its own rows in the database. Margins are common starting values of the trade. */
 export const measures = [
@@ -45,9 +54,9 @@ export const measures = [
   { code: 'malic', unit: 'g/L', decimals: 1, min: 0.1, max: 12, marginKind: 'absolute', margin: 0.4, sampledUnit: 'vine', defaultSpread: { kind: 'sd', value: 0.6, source: judgement }, typicalMean: 2.5, secondsPerSample: 60, weighting: 'mass', skewed: false, where: 'lab' },
   { code: 'rotShare', unit: '%', decimals: 0, min: 0, max: 100, marginKind: 'absolute', margin: 3, sampledUnit: 'vine', defaultSpread: { kind: 'sd', value: 6, source: judgement }, typicalMean: 4, secondsPerSample: 45, weighting: 'mass', skewed: true, where: 'field' },
   { code: 'pruningWeight', unit: 'kg', decimals: 2, min: 0.05, max: 5, marginKind: 'relative', margin: 0.1, sampledUnit: 'vine', defaultSpread: { kind: 'cv', value: 0.252, source: 'Rey-Caramés et al. 2015, Remote Sens. 7:14458' }, typicalMean: 0.7, secondsPerSample: 120, weighting: 'vines', skewed: false, where: 'field' },
-  { code: 'yieldPerVine', unit: 'kg', decimals: 2, min: 0, max: 30, marginKind: 'relative', margin: 0.15, sampledUnit: 'vine', defaultSpread: { kind: 'cv', value: 0.4, source: 'Aizpurua et al. 2006; planning judgement for the lower end' }, typicalMean: 3, secondsPerSample: 240, weighting: 'vines', skewed: true, where: 'field' },
+  { code: 'yieldPerVine', unit: 'kg', decimals: 2, min: 0, max: 30, marginKind: 'relative', margin: 0.15, sampledUnit: 'vine', defaultSpread: { kind: 'cv', value: 0.4, source: lowerEnd }, typicalMean: 3, secondsPerSample: 240, weighting: 'vines', skewed: true, where: 'field' },
   // Places without a living vine among the 20 ahead along the row, the vine itself not counted: the census by sample, apart from every count on living vines.
-  { code: 'missingVines', unit: '/20', decimals: 0, min: 0, max: 20, marginKind: 'absolute', margin: 0.4, sampledUnit: 'vine', defaultSpread: { kind: 'sd', value: 1.2, source: 'binomial for 4 % missing, a third more because gaps come together; planning judgement' }, typicalMean: 0.8, secondsPerSample: 45, weighting: 'vines', skewed: true, where: 'field' },
+  { code: 'missingVines', unit: '/20', decimals: 0, min: 0, max: 20, marginKind: 'absolute', margin: 0.4, sampledUnit: 'vine', defaultSpread: { kind: 'sd', value: 1.2, source: binomial }, typicalMean: 0.8, secondsPerSample: 45, weighting: 'vines', skewed: true, where: 'field' },
 ] as const satisfies readonly Measure[];
 
 export type MeasureCode = (typeof measures)[number]['code'];

@@ -9,8 +9,9 @@ export function openPage({ size, title, at, face = 'report' }: { size: 'A4' | 'L
   return new Paper({ face, size: size === 'A4' ? 'A4' : 'LETTER', margin, bufferPages: true, info: { Title: title, Creator: 'Patchrow', CreationDate: at } }).fillColor(ink);
 }
 
-export function heading(page: Paper, text: string): void {
-  keepRoom(page, 60);
+/** `below`: points that must be left for it and what stands together with it. */
+export function heading(page: Paper, text: string, below = 60): void {
+  keepRoom(page, below);
   page.moveDown(0.8).font('bold').fontSize(11).fillColor(ink).text(text, margin).font('plain').fontSize(9).moveDown(0.2);
 }
 

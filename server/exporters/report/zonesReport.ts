@@ -10,6 +10,7 @@ import type { ReportLayer, ReportZone, ZoneReport } from './zoneReport.ts';
 /** Points; the map takes what the words leave of one page. Lower it could not be read. */
 const mapHeights = { least: 120, most: 320 };
 const mapStep = 20;
+const tableLine = 18;
 const squareMetres = { metric: { unit: 'ha', each: 10_000 }, us: { unit: 'ac', each: 4046.8564224 } };
 
 /**
@@ -173,7 +174,8 @@ function meanOf(stats: { mean: number | null; sd: number | null } | undefined, l
 
 function layerTable(page: Paper, report: ZoneReport, { texts, figure, day }: Words): void {
   if (report.layers.length === 0) return;
-  heading(page, texts.layers as string);
+  // A few lines stay together with their heads.
+  heading(page, texts.layers as string, 60 + tableLine * report.layers.length);
   const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }, { head: texts.between as string, share: 3, isFigure: true }];
   const betweenOf = (layerId: string) => (report.zones.length > 1 ? report.differences.find((difference) => difference.layerId === layerId)?.explained : null) ?? null;
   table(page, columns, report.layers.map((layer) => [

@@ -33,7 +33,7 @@ export function lagIndex({ width, height }: { width: number; height: number }, d
 export function lagSums(plane: MaskedPlane, values: ArrayLike<number>): LagSums {
   const transform = createPlaneTransform(powerOfTwoAtLeast(2 * plane.width), powerOfTwoAtLeast(2 * plane.height));
   const spectrum = transform.forward(packed(plane, values, transform));
-  const power = combined(spectrum, transform, powerOfBoth);
+  const power = powerOf(spectrum, transform, 'both');
   const lags = transform.inverse(power);
   const size = transform.width * transform.height;
   const products = new Float64Array(size);
@@ -52,7 +52,7 @@ export function lagSums(plane: MaskedPlane, values: ArrayLike<number>): LagSums 
  */
 export function halfSquaredDifferences(plane: MaskedPlane, values: ArrayLike<number>, { transform, products }: LagSums): Float64Array {
   const spectrum = transform.forward(packed(plane, Float64Array.from(values, (value) => value * value), transform));
-  const lags = transform.inverse(combined(spectrum, transform, powerShared));
+  const lags = transform.inverse(powerOf(spectrum, transform, 'shared'));
   return products.map((product, i) => lags[2 * i]! - product);
 }
 
@@ -71,39 +71,32 @@ function packed({ width, height, mask }: MaskedPlane, values: ArrayLike<number>,
   return plane;
 }
 
-/** Spectra A, B of two real planes at one frequency, from the transform F of a + ib: A = (F(k) + F̄(−k))/2, B = (F(k) − F̄(−k))/2i. */
-interface Pair {
-  readonly realA: number;
-  readonly imaginaryA: number;
-  readonly realB: number;
-  readonly imaginaryB: number;
-}
-
-/** The plane of what is made of A and B; its inverse transform holds what the real parts give as real part. */
-function combined(spectrum: Float64Array, { width, height }: PlaneTransform, combine: (pair: Pair) => readonly [number, number]): Float64Array {
-  const out = new Float64Array(spectrum.length);
+/**
+ * From the transform F of a + ib (a, b real) by A = (F(k) + F̄(−k))/2, B = (F(k) − F̄(−k))/2i: the plane |A|² + i|B|², whose inverse
+ * transform holds the lag sums of a as real part and those of b as imaginary part, or, shared, the real part of A·B̄, whose inverse is
+ * the mean of the lag sums of a with b and of b with a.
+ */
+function powerOf(spectrum: Float64Array, { width, height }: PlaneTransform, of: 'both' | 'shared'): Float64Array {
+  const power = new Float64Array(spectrum.length);
   for (let row = 0; row < height; row++) {
     const mirrorRow = (height - row) % height;
     for (let col = 0; col < width; col++) {
       const at = 2 * (row * width + col);
       const mirror = 2 * (mirrorRow * width + ((width - col) % width));
-      const [real, imaginary] = combine({
-        realA: (spectrum[at]! + spectrum[mirror]!) / 2,
-        imaginaryA: (spectrum[at + 1]! - spectrum[mirror + 1]!) / 2,
-        realB: (spectrum[at + 1]! + spectrum[mirror + 1]!) / 2,
-        imaginaryB: (spectrum[mirror]! - spectrum[at]!) / 2,
-      });
-      out[at] = real;
-      out[at + 1] = imaginary;
+      const realA = (spectrum[at]! + spectrum[mirror]!) / 2;
+      const imaginaryA = (spectrum[at + 1]! - spectrum[mirror + 1]!) / 2;
+      const realB = (spectrum[at + 1]! + spectrum[mirror + 1]!) / 2;
+      const imaginaryB = (spectrum[mirror]! - spectrum[at]!) / 2;
+      if (of === 'shared') {
+        power[at] = realA * realB + imaginaryA * imaginaryB;
+      } else {
+        power[at] = realA * realA + imaginaryA * imaginaryA;
+        power[at + 1] = realB * realB + imaginaryB * imaginaryB;
+      }
     }
   }
-  return out;
+  return power;
 }
-
-/** |A|² + i|B|²: the lag sums of a as real part and those of b as imaginary part. */
-const powerOfBoth = ({ realA, imaginaryA, realB, imaginaryB }: Pair) => [realA * realA + imaginaryA * imaginaryA, realB * realB + imaginaryB * imaginaryB] as const;
-/** Real part of A·B̄: the mean of the lag sums of a with b and of b with a. */
-const powerShared = ({ realA, imaginaryA, realB, imaginaryB }: Pair) => [realA * realB + imaginaryA * imaginaryB, 0] as const;
 
 export interface SectorCorrelations {
   /** Correlation at about the given distance in six sectors of 30°, from south over east to north; NaN without pairs. */

@@ -1,3 +1,4 @@
+import { realpathSync } from 'node:fs';
 import vue from '@vitejs/plugin-vue';
 import { defineConfig } from 'vite';
 import { VitePWA } from 'vite-plugin-pwa';
@@ -76,6 +77,8 @@ export default defineConfig({
     },
   },
   server: {
+    // Packages that are a symbolic link lie outside of the checkout by their real name, and fonts from there are refused.
+    fs: { allow: [import.meta.dirname, realpathSync('node_modules')] },
     proxy: { '/api': { target: process.env.PATCHROW_API ?? 'http://127.0.0.1:3000', changeOrigin: false } },
   },
 });

@@ -1,3 +1,4 @@
+import { realpathSync } from 'node:fs';
 import vue from '@vitejs/plugin-vue';
 import { defineConfig } from 'vitest/config';
 
@@ -7,6 +8,8 @@ const browser = { environment: 'node' as const, globalSetup: ['tests/api/setup/d
 // journey runs with every test; the other journeys and the tour of all screens take long: npm run journeys.
 export default defineConfig({
   plugins: [vue()],
+  // Packages that are a symbolic link lie outside of the checkout by their real name, and files taken by address from there are refused.
+  server: { fs: { allow: [import.meta.dirname, realpathSync('node_modules')] } },
   test: {
     projects: [
       { extends: true, test: { name: 'core', include: ['tests/core/**/*.test.ts', 'tests/architecture/**/*.test.ts'], environment: 'node', testTimeout: 60_000 } },

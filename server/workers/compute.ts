@@ -24,9 +24,15 @@ const computations = {
 
 export type ComputeName = keyof typeof computations;
 
+/** What a thread is started with: the niceness it takes, where its lane lets requests go first. */
+export interface LaneData {
+  niceness?: number;
+}
+
 export type ComputeAnswer = { value: unknown } | { refused: CarriedError };
 
-if ((workerData as { lane?: string } | null)?.lane === 'heavy') yieldToRequests();
+const { niceness } = (workerData ?? {}) as LaneData;
+if (niceness !== undefined) yieldToRequests(niceness);
 
 /** Entry of a compute thread. What is wrong with the input comes back as an answer; a fault of ours is thrown. */
 export default async function compute(task: { name: ComputeName; input: never; port: MessagePort }): Promise<ComputeAnswer> {

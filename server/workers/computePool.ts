@@ -1,7 +1,8 @@
 import { MessageChannel } from 'node:worker_threads';
 import { Piscina } from 'piscina';
 import { fromCarried } from './carriedError.ts';
-import type { ComputeAnswer, ComputeName } from './compute.ts';
+import type { ComputeAnswer, ComputeName, LaneData } from './compute.ts';
+import { yieldedNiceness } from './yieldToRequests.ts';
 
 /** quick: what a person waits for at the screen. heavy: jobs that may take minutes and must not hold up the first, nor requests. */
 export type Lane = 'quick' | 'heavy';
@@ -21,7 +22,7 @@ function makePool(lane: Lane, threads: number): Piscina {
     minThreads: 0,
     idleTimeout: 60_000,
     // The GeoTIFF reader refuses to load in a thread without worker data.
-    workerData: { lane },
+    workerData: (lane === 'heavy' ? { niceness: yieldedNiceness } : {}) satisfies LaneData,
   });
 }
 

@@ -679,7 +679,8 @@ describe('publishing', () => {
     await zoned();
     const niceness = (thread: string) => Number(readFileSync(`/proc/self/task/${thread}/stat`, 'utf8').split(') ')[1]!.split(' ')[16]);
     const own = niceness(readlinkSync('/proc/thread-self').split('/').at(-1)!);
-    expect(readdirSync('/proc/self/task').map(niceness).filter((nice) => nice === own + 10)).toHaveLength(1);
+    // Counted from what these tests themselves were started with; 19 is the last there is.
+    expect(readdirSync('/proc/self/task').map(niceness).filter((nice) => nice === Math.min(19, own + 10))).toHaveLength(1);
   });
 
   it('is set beside the layers and zones of other seasons', async () => {

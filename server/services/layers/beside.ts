@@ -2,6 +2,7 @@ import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { LayerBeside } from '../../../shared/contracts/layers.ts';
 import type { LayerLikeness } from '../../../shared/analysis/layerShift.ts';
 import type { Access } from '../../access/access.ts';
+import { storedCells } from '../../ground/zoneLayers.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Layer } from '../../models/Layer.ts';
 import { runCompute } from '../../workers/computePool.ts';
@@ -21,19 +22,19 @@ export async function layersBeside(access: Access, layerId: string, blockId: str
   // What is made from a layer tells its story by its making.
   const others = layers.filter((layer) => layer.id !== layerId && layerType(layer.type).resampling !== 'class' && layer.derivedFrom === null && own.derivedFrom !== layer.id).slice(0, mostOthers);
   const rows = await BlockLayer.query().where({ estateId, blockId, gridKey: block.gridKey }).whereIn('layerId', others.map((layer) => layer.id)).select('layerId', 'cells');
+  const placed = rows.map((row) => ({ row, layer: others.find((layer) => layer.id === row.layerId)! }));
   const likenesses = await runCompute<(LayerLikeness | null)[]>(
     'compareLayers',
     {
       boundary: block.boundary.coordinates,
       cellSizeM: block.cellSizeM,
-      own: new Uint8Array(here.cells),
-      others: rows.map((row) => new Uint8Array(row.cells)),
+      own: storedCells(own, here),
+      others: placed.map(({ layer, row }) => storedCells(layer, row)),
     },
     { lane: 'quick' },
   );
-  return rows.flatMap((row, at) => {
+  return placed.flatMap(({ layer: other }, at) => {
     const likeness = likenesses[at];
-    const other = others.find((layer) => layer.id === row.layerId)!;
     if (!likeness) return [];
     const shift = other.type === own.type && (likeness.shift.eastM !== 0 || likeness.shift.northM !== 0) ? likeness.shift : null;
     return { id: other.id, name: other.name, type: other.type, measuredOn: other.measuredOn, correlation: likeness.correlation, shift };

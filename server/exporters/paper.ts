@@ -63,10 +63,19 @@ function signsOf(file: string): ReadonlySet<number> {
 /** No line begins with what ends a phrase, nor breaks within quotation marks: French sets spaces there (Unicode Standard Annex 14, spaces in French typography). */
 const unbroken = (text: string) => text.replace(/ (?=[;:!?»])/g, '\u00A0').replace(/« /g, '«\u00A0');
 
-/** What the face can show: thin spaces become plain ones that do not break; characters it lacks lose their accents, and without a base letter become a question mark. */
+/** What a reader takes for one character, however many code points it is joined of (Unicode Standard Annex 29). */
+const characters = new Intl.Segmenter(undefined, { granularity: 'grapheme' });
+
+/** What the face can show: thin spaces become plain ones that do not break; characters it lacks lose their accents, and without a base letter become one question mark. */
 function printable(written: string, signs: ReadonlySet<number>): string {
   const text = unbroken(written);
   if (/^[\n -~]*$/u.test(text)) return text;
   const has = (sign: string) => sign === '\n' || signs.has(sign.codePointAt(0)!);
-  return [...text.normalize('NFC').replace(/[\u2009\u202F]/gu, '\u00A0')].map((sign) => (has(sign) ? sign : ([...sign.normalize('NFD')].filter((part) => has(part) && !/\p{M}/u.test(part)).join('') || '?'))).join('');
+  const shown = (character: string): string => {
+    if ([...character].every(has)) return character;
+    const left = [...character].map((sign) => (has(sign) ? sign : [...sign.normalize('NFD')].filter((part) => has(part) && !/\p{M}/u.test(part)).join(''))).join('');
+    // Joiners and accents alone, which a face may well have, are nothing to read.
+    return /[^\p{M}\p{Cf}]/u.test(left) ? left : '?';
+  };
+  return Array.from(characters.segment(text.normalize('NFC').replace(/[\u2009\u202F]/gu, '\u00A0')), ({ segment }) => shown(segment)).join('');
 }

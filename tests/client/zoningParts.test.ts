@@ -1,9 +1,11 @@
 import { flushPromises } from '@vue/test-utils';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
+import { nextTick } from 'vue';
 import type { BlockLayerView } from '../../shared/contracts/layers.ts';
-import type { ZoningRequestOptions, ZoneView, ZoningLine, ZoningView } from '../../shared/contracts/zonings.ts';
+import type { EvidenceRow, ZoningRequestOptions, ZoneView, ZoningLine, ZoningView } from '../../shared/contracts/zonings.ts';
 import FruitTests from '../../src/components/zones/FruitTests.vue';
 import LayerShares from '../../src/components/zones/LayerShares.vue';
+import WhyThisMany from '../../src/components/zones/WhyThisMany.vue';
 import ZoningForm from '../../src/components/zones/ZoningForm.vue';
 import ZoningLayers from '../../src/components/zones/ZoningLayers.vue';
 import ZoningVersions from '../../src/components/zones/ZoningVersions.vue';
@@ -79,6 +81,12 @@ describe('what each layer adds', () => {
     expect(await linesOf({ zoning: zoning([]), zones })).toEqual([['Flight', '50 %'], ['Soil', '0 %']]);
     expect(await linesOf({ zoning: zoning([]), zones: [zones[0]!] })).toEqual([]);
   });
+
+  it('has its heads on a phone too, where a line has only those that a cell brings along', async () => {
+    const part = await mountWithTexts(LayerShares, { props: { zoning: zoning([{ one: 'a', other: 'b', correlation: 0.954 }]), zones } });
+    expect(part.findAll('tbody tr')[0]!.findAll('td.phone-second').map((cell) => cell.attributes('data-head'))).toEqual(['Lies between zones', 'Most alike']);
+    part.unmount();
+  });
 });
 
 describe('a run beside another', () => {
@@ -100,6 +108,24 @@ describe('a run beside another', () => {
   });
 });
 
+describe('a frame that scrolls sideways', () => {
+  const rows = [1, 2].map((k) => ({ k, silhouette: 0.5, varianceExplained: 0.5, stability: 0.9, holds: null, gap: 1, smallestZoneHa: 1, hours: 1 })) as unknown as EvidenceRow[];
+
+  it.each([[560, { tabindex: '0', role: 'region', 'aria-label': 'One to six zones compared' }], [358, {}]])('of %i px in 358 has a tab stop of its own only where keys can scroll it', async (scrollWidth, stop) => {
+    let look: () => void = () => undefined;
+    vi.stubGlobal('ResizeObserver', class { observe = () => undefined; disconnect = () => undefined; constructor(callback: () => void) { look = callback; } });
+    const part = await mountWithTexts(WhyThisMany, { props: { rows, pictures: new Map(), advised: 2, smallestPatchHa: 0.05, shown: 1 } });
+    const { element } = part.find('.scroll');
+    for (const [name, value] of Object.entries({ scrollWidth, clientWidth: 358 })) Object.defineProperty(element, name, { value });
+    look();
+    await nextTick();
+    const { tabindex, role, 'aria-label': label } = part.find('.scroll').attributes();
+    expect({ tabindex, role, 'aria-label': label }).toEqual({ tabindex: undefined, role: undefined, 'aria-label': undefined, ...stop });
+    part.unmount();
+    vi.unstubAllGlobals();
+  });
+});
+
 describe('zones tested on fruit', () => {
   const zoning = (fruitZones: number) => ({ fruitZones, options: { zones: 'advise' }, advisedZones: 1, fruit: [{ measure: 'brix', on: ['2026-08-01'], n: 40, f: 1.2, dfBetween: 1, dfWithin: 38, omegaSquared: 0.01, leaveOneOutRSquared: 0, p: 0.3, shuffle: 'rows' }] }) as unknown as ZoningView;
 
@@ -109,5 +135,11 @@ describe('zones tested on fruit', () => {
       expect(part.text().includes('Tested with 2 zones'), `${shown}`).toBe(said);
       part.unmount();
     }
+  });
+
+  it('shows on a phone the chance that its words speak of', async () => {
+    const part = await mountWithTexts(FruitTests, { props: { zoning: zoning(2), shown: 2 } });
+    expect(part.findAll('tbody td.phone-second').map((cell) => [cell.attributes('data-head'), textOf(cell.element)])).toEqual([['Readings', '40'], ['Lies between zones', '1 %'], ['Chance does as well', '0.300']]);
+    part.unmount();
   });
 });

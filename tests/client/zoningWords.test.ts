@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { ZoningView } from '../../shared/contracts/zonings.ts';
-import { adviceWords, agreementWord, layerName, numberWords, verdictWords, warningWords } from '../../src/components/zones/zoningWords.ts';
+import { adviceWords, agreementWord, layerName, numberWords, overruledAdvice, verdictWords, warningWords } from '../../src/components/zones/zoningWords.ts';
 import { createFormat, type Format } from '../../src/lib/format.ts';
 
 /** Names of sentences with what is put into them, so that a wording may change. */
@@ -102,5 +102,14 @@ describe('why a layer has its weight', () => {
     expect(why(layer('map', 'context', { code: 'context-off', figures: edges }))).toBe('zones.advice.context-off(, 0.6, 0, 0)');
     expect(why(layer('map', 'context', { code: 'context-off' }))).toBe('zones.advice.context-unknown(, 0, 0, 0)');
     expect(why(layer('map', 'context', null))).toBe('');
+  });
+
+  it('tells an advised weight that was not followed on the scale of those that were given, and none where all are to each other as advised', () => {
+    const given = (...pairs: [weight: number, advised: number | null][]) => pairs.map(([weight, advised]) => ({ weight, advised: advised === null ? null : { weight: advised } })) as unknown as Layer[];
+    const told = (layers: Layer[]) => layers.map((one) => overruledAdvice(one, layers));
+    expect(told(given([1, 1 / 3], [1, 1 / 3], [1, 1 / 3]))).toEqual([null, null, null]);
+    expect(told(given([0.5, 0.5], [0.5, 0.5], [0, 0]))).toEqual([null, null, null]);
+    expect(told(given([1, 0.5], [1, 0.5], [1, 0]))).toEqual([1.5, 1.5, 0]);
+    expect(told(given([3, 1], [1, 1], [2, null]))).toEqual([2, 2, null]);
   });
 });

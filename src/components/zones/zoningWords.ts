@@ -58,6 +58,18 @@ export function adviceWords({ advised }: Layer, layers: readonly Layer[], { t, f
   return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map((layer) => layerName(layer, t))), correlation: format.number(figures.correlation ?? 0, 2), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
 }
 
+/**
+ * The advised weight where it was not followed, else null. Zones follow from what weights are to each other, so it is told on the scale of those that
+ * were given: three layers at 1 each are as advised where each should have a third.
+ */
+export function overruledAdvice({ advised, weight }: Layer, layers: readonly Layer[]): number | null {
+  if (!advised) return null;
+  const told = layers.filter((layer) => layer.advised);
+  const [given, wanted] = [told.reduce((sum, layer) => sum + layer.weight, 0), told.reduce((sum, layer) => sum + layer.advised!.weight, 0)];
+  const here = wanted > 0 ? (advised.weight * given) / wanted : advised.weight;
+  return Math.abs(here - weight) > 0.005 ? here : null;
+}
+
 /** How far zones agree: the same for every vine, else by the adjusted Rand index in five steps of our own. */
 export function agreementWord({ adjustedRand, vinesApart }: { adjustedRand: number; vinesApart: number }): 'identical' | 'same' | 'much' | 'partly' | 'little' | 'chance' {
   if (vinesApart === 0) return 'identical';

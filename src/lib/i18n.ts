@@ -17,8 +17,10 @@ const elided: Readonly<Record<string, string>> = { il: 'l’', Il: 'L’', del: 
 const italianDays = (text: string) => text.replace(/(^|[^\p{L}])(il|Il|del|Del|dal|Dal|al|nel|sul) (?=(?:8|11)(?![\d.,]))/gu, (_, before: string, article: string) => before + elided[article]!);
 /** French sets a space before : ; ? ! and inside « », at which no line may break: narrow before all but the colon. */
 const frenchSpaces = (text: string) => text.replace(/ (?=[;?!])/g, '\u202F').replace(/ (?=[:»])/g, '\u00A0').replace(/« /g, '«\u00A0');
+/** No line breaks between a number and its percent sign. */
+const wholePercents = (text: string) => text.replace(/(\d) (?=%)/g, '$1\u00A0');
 const ownWays: Readonly<Record<string, (text: string) => string>> = { it: italianDays, fr: frenchSpaces };
-const settled = <Text>(text: Text): Text => (typeof text === 'string' ? ((ownWays[i18n.global.locale.value] ?? String)(oneStop(text)) as Text) : text);
+const settled = <Text>(text: Text): Text => (typeof text === 'string' ? ((ownWays[i18n.global.locale.value] ?? String)(wholePercents(oneStop(text))) as Text) : text);
 
 export const i18n = createI18n({ legacy: false, locale: 'en', messages: {} as Record<string, Record<string, never>>, missingWarn: false, fallbackWarn: false, postTranslation: settled });
 

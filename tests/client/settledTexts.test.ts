@@ -25,6 +25,14 @@ describe('texts as they are settled', () => {
     expect(global.t('settled.signs')).toBe('Vraiment\u202F? Oui\u00A0: «\u00A0tel quel\u00A0»\u202F; voilà\u202F!');
   });
 
+  it('keeps a percent sign with its number in every language', () => {
+    for (const language of ['en', 'es', 'fr']) {
+      global.locale.value = language as never;
+      global.mergeLocaleMessage(language, { settled: { share: '< 50 %, {n} %.' } } as never);
+      expect(global.t('settled.share', { n: 75 })).toBe('< 50\u00A0%, 75\u00A0%.');
+    }
+  });
+
   it('leaves Spanish as it is and ends no sentence twice', () => {
     expect(said('es', '8 sept.')).toBe('dal 8 sept. al 8 sept., il 8 sept.');
   });

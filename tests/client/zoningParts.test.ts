@@ -45,6 +45,15 @@ describe('what to zone from', () => {
     }
   });
 
+  it('names each weight apart where slope bears the name of the height it was made from', async () => {
+    const heights = [layer('h', 'elevation', null), { ...layer('s', 'slope', null), name: 'h' }];
+    const before = { layers: heights.map(({ id }) => ({ layerId: id, weight: 0.5 })), withBlocks: [] } as unknown as ZoningRequestOptions;
+    const form = await mountWithTexts(ZoningForm, { props: { layers: heights, before } });
+    const names = form.findAll('.weight').map((field) => textOf(field.find('label').element));
+    expect(names).toEqual(['Weight of h', 'Weight of h, slope']);
+    form.unmount();
+  });
+
   it('says of a block without layers that there are none', async () => {
     const form = await mountWithTexts(ZoningForm, { props: { layers: [] }, slots: { none: () => 'the way to them' } });
     expect(form.text()).toContain('No layer lies on this block yet.');

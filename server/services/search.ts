@@ -2,6 +2,7 @@ import { may, type Permission, type Reach } from '../../shared/catalog/permissio
 import type { Found } from '../../shared/contracts/search.ts';
 import { matchScore } from '../../shared/search/matchScore.ts';
 import type { Access } from '../access/access.ts';
+import { zonesInForce } from '../ground/zonesInForce.ts';
 import { Bag } from '../models/Bag.ts';
 import { Block } from '../models/Block.ts';
 import { BlockLayer } from '../models/BlockLayer.ts';
@@ -48,9 +49,10 @@ async function blocks({ estateId }: Access): Promise<Found[]> {
 async function zones({ estateId }: Access): Promise<Found[]> {
   const rows = (await Zone.query()
     .alias('z')
-    .joinRaw("join zonings g on g.estate_id = z.estate_id and g.id = z.zoning_id and g.state = 'live'")
+    .joinRaw('join zonings g on g.estate_id = z.estate_id and g.id = z.zoning_id')
     .joinRaw('join blocks b on b.estate_id = g.estate_id and b.id = g.block_id and b.retired_at is null')
     .where('z.estateId', estateId)
+    .whereIn('z.zoningId', zonesInForce(estateId).select('zonings.id'))
     .orderBy(['b.name', 'z.number'])
     .limit(lookedThrough)
     .select('z.id', 'z.name', 'b.name as blockName', 'b.id as blockId')) as (Zone & { blockName: string; blockId: string })[];

@@ -3,12 +3,12 @@ import { may, reachOf } from '../../../shared/catalog/permissions.ts';
 import type { Access } from '../../access/access.ts';
 import { zoneOfBag } from '../../ground/bagZone.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { Bag } from '../../models/Bag.ts';
 import { Person } from '../../models/Person.ts';
 import { Reading } from '../../models/Reading.ts';
 import { RoundPerson } from '../../models/RoundPerson.ts';
 import { Zone } from '../../models/Zone.ts';
-import { Zoning } from '../../models/Zoning.ts';
 import { vineWords } from '../plans/viewPlan.ts';
 
 const usualDays = 45;
@@ -70,7 +70,7 @@ async function placesOf(estateId: string, bags: readonly Bag[]): Promise<(bag: B
   const grounds = new Map<string, { ground: BlockVines; zoneOf: Uint8Array | null; zones: Zone[] }>();
   for (const blockId of new Set(bags.flatMap((bag) => bag.blockId ?? []))) {
     const ground = await loadBlockVines(estateId, blockId);
-    const zoning = await Zoning.query().where({ estateId, blockId, state: 'live' }).orderBy('publishedAt', 'desc').first();
+    const zoning = await zonesInForce(estateId).where({ blockId }).first();
     const zones = zoning ? await Zone.query().where({ estateId, zoningId: zoning.id }).select('id', 'number', 'name') : [];
     grounds.set(blockId, { ground, zoneOf: zoning ? zonesOfVines(ground, zoning) : null, zones });
   }

@@ -2,6 +2,7 @@ import type { MultiPolygon } from 'geojson';
 import { raw } from 'objection';
 import type { BlockLine } from '../../../shared/contracts/blocks.ts';
 import type { Access } from '../../access/access.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { Block } from '../../models/Block.ts';
 import { BlockLayer } from '../../models/BlockLayer.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -9,7 +10,6 @@ import { asGeoJson } from '../../models/geometry.ts';
 import { Reading } from '../../models/Reading.ts';
 import { Round } from '../../models/Round.ts';
 import { Zone } from '../../models/Zone.ts';
-import { Zoning } from '../../models/Zoning.ts';
 import { dayIn } from '../../../shared/season/dayIn.ts';
 import { restrictionsInForce } from './restrictions.ts';
 import { vineTotals } from './vineCounts.ts';
@@ -51,13 +51,9 @@ export async function listBlocks(access: Access, now: Date): Promise<BlockLine[]
   });
 }
 
-/** The zones in force on each block: those published last, whatever their season. */
 async function liveZonings(estateId: string, blockIds: string[]): Promise<Map<string, NonNullable<BlockLine['zoning']>>> {
-  const zonings = await Zoning.query()
-    .where({ estateId, state: 'live' })
+  const zonings = await zonesInForce(estateId)
     .whereIn('blockId', blockIds)
-    .distinctOn('blockId')
-    .orderBy([{ column: 'blockId' }, { column: 'publishedAt', order: 'desc' }])
     .select('id', 'blockId', 'name', 'revision');
   const zones = await Zone.query()
     .where({ estateId })

@@ -12,13 +12,13 @@ import { trialWalks } from '../../../shared/sampling/walkEstimate.ts';
 import { loadBlockVines, zonesOfVines } from '../../ground/blockVines.ts';
 import { loadTerrain } from '../../ground/terrain.ts';
 import { zonedReadings, type ZonedReading } from '../../ground/zonedReadings.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { Estate } from '../../models/Estate.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Plan } from '../../models/Plan.ts';
 import { Round } from '../../models/Round.ts';
 import { Season } from '../../models/Season.ts';
 import { Target } from '../../models/Target.ts';
-import { Zoning } from '../../models/Zoning.ts';
 import { loadPlanGround, type PlanGround } from './planGround.ts';
 
 const usualPace = paceChoices.parse({});
@@ -107,7 +107,7 @@ function historyOf(readings: ZonedReading[], block: string, yearOf: Map<string, 
 }
 
 async function historyOfOtherBlocks(estateId: string, blockId: string, yearOf: Map<string, number>): Promise<Map<string, HistoryReading[]>> {
-  const live = await Zoning.query().where({ estateId, state: 'live' }).whereNot({ blockId }).whereNotNull('labels').orderBy('publishedAt', 'desc').limit(otherBlocksRead);
+  const live = await zonesInForce(estateId).whereNot({ blockId }).whereNotNull('labels').orderBy('publishedAt', 'desc').limit(otherBlocksRead);
   const all = new Map<string, HistoryReading[]>();
   for (const zoning of live) {
     const ground = await loadBlockVines(estateId, zoning.blockId);

@@ -10,6 +10,7 @@ import { vineXY } from '../../../shared/geo/vines.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
 import type { Access } from '../../access/access.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { Block } from '../../models/Block.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import { Person } from '../../models/Person.ts';
@@ -46,7 +47,7 @@ export async function listPlans(access: Access, filter: { zoningId?: string; blo
 /** Zones that a plan can be made on: those in force, one a block; and the blocks without any. */
 export async function plannableZonings(access: Access): Promise<Pick<PlanList, 'zonings' | 'withoutZones'>> {
   const { estateId } = access;
-  const zonings = await Zoning.query().where({ estateId, state: 'live' }).whereNotNull('labels').select('id', 'number', 'name', 'blockId');
+  const zonings = await zonesInForce(estateId).whereNotNull('labels').select('id', 'number', 'name', 'blockId');
   const blocks = await Block.query().where({ estateId }).whereNull('retiredAt').orderBy('name').select('id', 'name');
   const zoned = blocks.flatMap((block) => zonings.filter(({ blockId }) => blockId === block.id).map(({ id, number }) => ({ id, number, blockId: block.id, blockName: block.name })));
   return { zonings: zoned, withoutZones: blocks.filter(({ id }) => zoned.every(({ blockId }) => blockId !== id)).map(({ id, name }) => ({ id, name })) };

@@ -1,16 +1,15 @@
 import type { FeatureCollection, MultiPolygon } from 'geojson';
 import type { Access } from '../../access/access.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { asGeoJson } from '../../models/geometry.ts';
 import { Zone } from '../../models/Zone.ts';
 
-/** Zones in force over the estate, for the map of all blocks: the newest season's live zones of each block. */
+/** Zones in force over the estate, for the map of all blocks: one set a block. */
 export async function liveZones(access: Access): Promise<FeatureCollection<MultiPolygon>> {
   const rows = (await Zone.query()
     .where('zones.estateId', access.estateId)
     .join('zonings', 'zonings.id', 'zones.zoningId')
-    .join('seasons', 'seasons.id', 'zonings.seasonId')
-    .where('zonings.state', 'live')
-    .whereRaw('seasons.starts_on = (select max(s.starts_on) from zonings z join seasons s on s.id = z.season_id where z.estate_id = zonings.estate_id and z.block_id = zonings.block_id and z.state = ?)', ['live'])
+    .whereIn('zones.zoningId', zonesInForce(access.estateId).select('zonings.id'))
     .orderBy('zones.number')
     .select('zones.id', 'zones.number', 'zones.name', 'zones.colour', 'zones.areaM2', 'zones.vineCount', 'zones.zoningId', 'zonings.blockId', asGeoJson('zones.geometry').as('geometry'))) as unknown as (Zone & { blockId: string })[];
   return {

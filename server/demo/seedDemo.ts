@@ -40,7 +40,7 @@ export async function seedDemo(options: { now: Date; reset: boolean; onStep?: (s
     step('fruit');
     await seedFruit(made, laid, { ground, days });
     step('zones');
-    await seedZones(made, laid, days.at(-55, 9));
+    await seedZones(made, laid, days);
     step('plans');
     await seedPlans(made, laid, { days, now: options.now });
     await seedField(made, { days, now: options.now });

@@ -2,7 +2,7 @@ import { randomIndex, randomNormal, seededRandom, type Random } from '../../shar
 import { labelCode } from '../../shared/field/labelCode.ts';
 import type { Access } from '../access/access.ts';
 import { isBearing, zonesOfVines } from '../ground/blockVines.ts';
-import { Zoning } from '../models/Zoning.ts';
+import { zonesInForce } from '../ground/zonesInForce.ts';
 import { closeBags } from '../services/bags/closeBags.ts';
 import { receiveBags, reportMissing } from '../services/bags/receiveBags.ts';
 import { recordResults } from '../services/lab/recordResults.ts';
@@ -44,7 +44,7 @@ interface DemoBag {
 
 async function closedBags(estateId: string, block: LaidBlock, { days, random }: { days: DemoDays; random: Random }): Promise<DemoBag[]> {
   const { ground } = block;
-  const zoning = await Zoning.query().findOne({ estateId, blockId: ground.block.id, state: 'live' }).throwIfNotFound();
+  const zoning = await zonesInForce(estateId).findOne({ blockId: ground.block.id }).throwIfNotFound();
   const zoneOf = zonesOfVines(ground, zoning);
   const zones = [...new Set(zoneOf)].filter((zone) => zone > 0).sort((a, b) => a - b);
   return zones.flatMap((zone) => Array.from({ length: bagsPerZone }, (_, at) => {

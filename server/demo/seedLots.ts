@@ -1,4 +1,5 @@
 import type { Access } from '../access/access.ts';
+import { zonesInForce } from '../ground/zonesInForce.ts';
 import { Zone } from '../models/Zone.ts';
 import { Tank } from '../models/Tank.ts';
 import { Lot } from '../models/Lot.ts';
@@ -31,7 +32,7 @@ const moved = 'Marl red';
 /** Lots in the making: some zones are spoken for, others are still free. */
 export async function seedLots(made: DemoEstate, days: DemoDays): Promise<void> {
   const access: Access = { estateId: made.estateId, personId: made.personOf('winemaker'), roles: ['winemaker'] };
-  const zones = (await Zone.query().where('zones.estateId', made.estateId).join('zonings', 'zonings.id', 'zones.zoningId').join('blocks', 'blocks.id', 'zonings.blockId').where('zonings.state', 'live').select('zones.id', 'zones.number', 'blocks.name as blockName')) as unknown as { id: string; number: number; blockName: string }[];
+  const zones = (await Zone.query().where('zones.estateId', made.estateId).join('zonings', 'zonings.id', 'zones.zoningId').join('blocks', 'blocks.id', 'zonings.blockId').whereIn('zones.zoningId', zonesInForce(made.estateId).select('zonings.id')).select('zones.id', 'zones.number', 'blocks.name as blockName')) as unknown as { id: string; number: number; blockName: string }[];
   const tanks = await Tank.query().where({ estateId: made.estateId });
   for (const { name, wineType, pick, tank, parts } of lots) {
     const wanted = parts.flatMap(([block, number]) => zones.filter((zone) => zone.blockName === block && zone.number === number).map((zone) => ({ zoneId: zone.id, rowIds: null })));

@@ -4,7 +4,7 @@ import { newReading } from '../../shared/contracts/readings.ts';
 import { newRestriction } from '../../shared/contracts/restrictions.ts';
 import { newRound } from '../../shared/contracts/rounds.ts';
 import type { Access } from '../access/access.ts';
-import { Zoning } from '../models/Zoning.ts';
+import { zonesInForce } from '../ground/zonesInForce.ts';
 import { lockPlan, makePlan } from '../services/plans/writePlan.ts';
 import { recordBatch } from '../services/readings/recordBatch.ts';
 import { setRestriction } from '../services/restrictions.ts';
@@ -47,7 +47,7 @@ interface SentRound {
 }
 
 async function sendRound(manager: Access, wish: RoundWish): Promise<SentRound> {
-  const zoning = await Zoning.query().findOne({ estateId: manager.estateId, blockId: wish.blockId, state: 'live' }).throwIfNotFound();
+  const zoning = await zonesInForce(manager.estateId).findOne({ blockId: wish.blockId }).throwIfNotFound();
   const plan = await makePlan(manager, zoning.id, newPlan.parse({ name: wish.name, measures: [{ code: wish.measure, margin: wish.margin, marginKind: 'relative', confidence: 0.95 }], seed: 12 }));
   await lockPlan(manager, plan.id, new Date(`${wish.onDate}T05:00:00Z`));
   const { id } = await makeRound(manager, plan.id, newRound.parse({ onDate: wish.onDate, people: [wish.crew], gate: wish.gate, notes: wish.notes }), { publicUrl: 'http://localhost' });

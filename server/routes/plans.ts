@@ -65,7 +65,8 @@ export function planRoutes(): Router {
   router.get('/plans/:planId/export', read, async (request, response) => {
     const { format } = planExport.parse(request.query);
     const file = await exportPlan(accessOf(request), idParam(request, 'planId'), { format, language: languageOf(request) });
-    response.set('content-type', file.type).attachment(file.name).send(file.body);
+    // What a name ends in is no kind that every server knows: the format's own comes last.
+    response.attachment(file.name).set('content-type', file.type).send(file.body);
   });
   return router;
 }

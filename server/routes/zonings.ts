@@ -86,7 +86,8 @@ export function zoningRoutes(): Router {
   router.get('/zonings/:zoningId/export', allow('exports.make'), async (request, response) => {
     const { format, zones = null } = zonesExport.parse(request.query);
     const file = await exportZones(accessOf(request), idParam(request, 'zoningId'), { format, zones, language: languageOf(request) });
-    response.set('content-type', file.type).attachment(file.name).send(file.body);
+    // What a name ends in is no kind that every server knows: the format's own comes last.
+    response.attachment(file.name).set('content-type', file.type).send(file.body);
   });
   router.get('/zonings/:zoningId/report', allow('exports.make'), async (request, response) => {
     const { size, zones = null } = zonesReport.parse(request.query);

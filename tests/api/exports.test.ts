@@ -15,6 +15,7 @@ import { polygonsToUtm } from '../../shared/geo/utm.ts';
 import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import type { ZoneOperation, ZoningView } from '../../shared/contracts/zonings.ts';
+import { exportFormats } from '../../server/exporters/formats.ts';
 import { gridOf } from '../../server/ground/blockVines.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { Block } from '../../server/models/Block.ts';
@@ -137,6 +138,10 @@ describe('formats of zones', () => {
     expect(answer.headers['content-type']).toMatch('application/geo+json');
     expect(decodeURIComponent(answer.headers['content-disposition'] as string)).toContain('Côte à l’Éperon Été 2026.geojson');
     expect(await AuditEntry.query().where({ action: 'zones.export', subjectId: zoningId }).orderBy('id', 'desc').first()).toMatchObject({ after: { format: 'geojson' }, subjectName: 'Côte à l’Éperon' });
+  });
+
+  it.each(exportFormats)('are of the kind that their table says: $id', async ({ id, mediaType }) => {
+    expect((await take(id)).headers['content-type']).toBe(mediaType);
   });
 
   it('are taken under names that end in the middle of an emoji, and those of rows can be told from those of zones', async () => {

@@ -85,6 +85,16 @@ function advice(id: string, weight: number, code: LayerAdviceCode, rest: { about
   return { id, weight, code, about: rest.about ?? null, figures: rest.figures ?? {} };
 }
 
+/**
+ * What advised weights are multiplied by to stand beside those that were given. Zones follow from what weights are to each other, so three layers at
+ * 1 each are as advised where each should have a third.
+ */
+export function scaleOfAdvice(layers: readonly { readonly weight: number; readonly advised: number | null }[]): number {
+  const told = layers.filter(({ advised }) => advised !== null);
+  const [given, wanted] = [told.reduce((sum, { weight }) => sum + weight, 0), told.reduce((sum, { advised }) => sum + advised!, 0)];
+  return given > 0 && wanted > 0 ? given / wanted : 1;
+}
+
 /** Layers that repeat each other share the weight of one. */
 function adviseEvidence(layer: AdvisableLayer, evidence: readonly AdvisableLayer[]): LayerAdvice {
   const repeats = evidence

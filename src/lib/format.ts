@@ -1,3 +1,4 @@
+import { numberText, thinSpace } from '../../shared/numberText.ts';
 import { decimalsOf, shownValue, unitOf, unitWord, type Quantity, type UnitSystem } from './units.ts';
 
 /** How figures and dates are written: narrow space for thousands, true minus, narrow spaces around ±, unit after a narrow space. */
@@ -9,11 +10,6 @@ export interface FormatPreferences {
   /** IANA zone for times of day, the estate's; the device's own when missing. */
   readonly timeZone?: string;
 }
-
-/** Narrow and unbreakable: a figure never parts from its unit at the end of a line. */
-export const thinSpace = '\u202F';
-export const minus = '\u2212';
-export const noFigure = '\u2013';
 
 /** Day before month, as estates write it; the region only decides about order and separators. */
 const regions: Record<Language, string> = { en: 'en-GB', es: 'es-ES', fr: 'fr-FR', it: 'it-IT', pt: 'pt-PT' };
@@ -62,19 +58,6 @@ export function createFormat({ language, units, timeZone }: FormatPreferences) {
     bytes: (bytes: number) => bytesText(bytes, number),
     list: (items: readonly string[], joined: 'and' | 'or' = 'and') => new Intl.ListFormat(region, { type: joined === 'and' ? 'conjunction' : 'disjunction' }).format(items),
   };
-}
-
-function numberText(value: number, decimals: number, region: string): string {
-  if (!Number.isFinite(value)) return noFigure;
-  const parts = new Intl.NumberFormat(region, { minimumFractionDigits: decimals, maximumFractionDigits: decimals, useGrouping: 'always' }).formatToParts(value);
-  const digitsAreZero = parts.every(({ type, value: text }) => (type !== 'integer' && type !== 'fraction') || /^0+$/.test(text));
-  return parts
-    .map(({ type, value: text }) => {
-      if (type === 'group') return thinSpace;
-      if (type === 'minusSign') return digitsAreZero ? '' : minus;
-      return text;
-    })
-    .join('');
 }
 
 interface DateText {

@@ -10,7 +10,7 @@ import ProgressRow from '../../src/components/base/ProgressRow.vue';
 import QuietState from '../../src/components/base/QuietState.vue';
 import TextField from '../../src/components/base/TextField.vue';
 import { HttpProblem, offlineProblem } from '../../src/lib/httpProblem.ts';
-import { thinSpace } from '../../src/lib/format.ts';
+import { thinSpace } from '../../shared/numberText.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 let wrapper: VueWrapper;

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { measures } from '../../shared/catalog/measures.ts';
-import { createFormat, minus, thinSpace } from '../../src/lib/format.ts';
+import { minus, thinSpace } from '../../shared/numberText.ts';
+import { createFormat } from '../../src/lib/format.ts';
 import { readNumber } from '../../src/lib/readNumber.ts';
 import { shownValue, storedValue } from '../../src/lib/units.ts';
 

@@ -6,6 +6,7 @@ import { inflateSync } from 'node:zlib';
 import { describe, expect, it } from 'vitest';
 import { hasTool } from '../api/support/gdal.ts';
 import type { ReportLayer, ReportZone, ZoneReport } from '../../server/exporters/report/zoneReport.ts';
+import { reportTexts } from '../../server/exporters/report/reportTexts.ts';
 import { zonesReport } from '../../server/exporters/report/zonesReport.ts';
 import { channels, zoneStyle } from '../../shared/catalog/zoneStyles.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
@@ -64,8 +65,16 @@ describe('the printed zones', () => {
     expect(text).not.toContain('1.50');
     expect(text).toContain('Between zones Flight runs from 1.00 to 2.00');
     expect(text).not.toContain('Between zones Height');
+    // Advised weights stand on the scale of those that were given: each a third of the two that were.
     // How much lies between zones is told of every layer of numbers, and the two most alike are named.
-    expect(text).toMatch(/Flight – 1\.00 1\.00 62 Soil – 1\.00 1\.00 – Height – 0\.00 1\.00 7 /);
-    expect(text).toContain('most alike are Flight and Height (Pearson’s correlation -0.31;');
+    expect(text).toMatch(/Flight – 1\.00 0\.67 62 Soil – 1\.00 0\.67 – Height – 0\.00 0\.67 7 /);
+    expect(text).toContain('most alike are Flight and Height (Pearson’s correlation −0.31;');
+  });
+
+  it.skipIf(!hasTool('pdftotext')).each(['en', 'es', 'fr', 'it', 'pt'] as const)('write thousands as screens do, of four digits too, and break no word of a head: %s', async (language) => {
+    const text = (await textOf({ ...report([zone(1, { vines: 8858 }), zone(2, { vines: 18_300 })], [layer('Flight')]), language })).replace(/\s/gu, ' ');
+    // No word of a head is broken either.
+    expect(text).toContain(reportTexts[language].advised);
+    for (const figure of ['8 858', '18 300', '27 158']) expect(text).toContain(figure);
   });
 });

@@ -1,5 +1,6 @@
 import { sumFigures } from '../../../shared/cellar/dependent.ts';
 import type { ReviewView } from '../../../shared/contracts/tickets.ts';
+import { numberText } from '../../../shared/numberText.ts';
 import { innerWidth, margin, openPage, paragraph, faint } from './reportPage.ts';
 import { seasonLetterTexts, type LetterLanguage } from './seasonLetterTexts.ts';
 
@@ -84,7 +85,7 @@ function tonnesText(letter: SeasonLetter, tonnes: number, half: number | null): 
 }
 
 function figure({ language }: SeasonLetter, value: number, decimals: number): string {
-  return new Intl.NumberFormat(regionOf(language), { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+  return numberText(value, decimals, regionOf(language));
 }
 
 /** Whole hours, or minutes below two hours, with the unit as the language counts it ("1 minute", "5 hours"). */

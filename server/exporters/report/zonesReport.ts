@@ -1,8 +1,10 @@
 import { drawMap, drawSwatch } from './reportMap.ts';
 import type { Paper } from '../paper.ts';
 import { faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, table, type Column } from './reportPage.ts';
+import { scaleOfAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import { zoneSpan } from '../../../shared/catalog/zoneStyles.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
+import { numberText } from '../../../shared/numberText.ts';
 import { reportMeasures } from './reportMeasures.ts';
 import { filled, reportTexts, type ReportTexts } from './reportTexts.ts';
 import type { ReportLayer, ReportZone, ZoneReport } from './zoneReport.ts';
@@ -70,7 +72,7 @@ interface Words {
 function wordsOf({ language: spoken, units, timeZone, smallestPatchHa }: ZoneReport): Words {
   // English dates are written as where the units come from.
   const language = spoken === 'en' && units === 'metric' ? 'en-GB' : spoken;
-  const figure = (value: number, decimals: number) => new Intl.NumberFormat(language, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+  const figure = (value: number, decimals: number) => numberText(value, decimals, language);
   return {
     texts: reportTexts[spoken],
     figure,
@@ -176,13 +178,14 @@ function layerTable(page: Paper, report: ZoneReport, { texts, figure, day }: Wor
   if (report.layers.length === 0) return;
   // A few lines stay together with their heads.
   heading(page, texts.layers as string, 60 + tableLine * report.layers.length);
-  const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 2, isFigure: true }, { head: texts.advised as string, share: 2, isFigure: true }, { head: texts.between as string, share: 3, isFigure: true }];
+  const columns: Column[] = [{ head: texts.layer as string, share: 6 }, { head: texts.measuredOn as string, share: 4 }, { head: texts.weight as string, share: 1.6, isFigure: true }, { head: texts.advised as string, share: 2.6, isFigure: true }, { head: texts.between as string, share: 3, isFigure: true }];
   const betweenOf = (layerId: string) => (report.zones.length > 1 ? report.differences.find((difference) => difference.layerId === layerId)?.explained : null) ?? null;
+  const scale = scaleOfAdvice(report.layers);
   table(page, columns, report.layers.map((layer) => [
     layer.isContext ? `${layer.name} (${texts.context as string})` : layer.name,
     layer.measuredOn === null ? '–' : day(new Date(`${layer.measuredOn}T12:00:00Z`)),
     figure(layer.weight, 2),
-    layer.advised === null ? '–' : figure(layer.advised, 2),
+    layer.advised === null ? '–' : figure(layer.advised * scale, 2),
     layer.isClass || betweenOf(layer.layerId) === null ? '–' : figure(100 * betweenOf(layer.layerId)!, 0),
   ]));
   page.moveDown(0.4);

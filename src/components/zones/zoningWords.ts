@@ -1,8 +1,10 @@
 import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
+import { scaleOfAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import type { ZoningView } from '../../../shared/contracts/zonings.ts';
-import { thinSpace, type Format } from '../../lib/format.ts';
+import { thinSpace } from '../../../shared/numberText.ts';
+import type { Format } from '../../lib/format.ts';
 
 type Layer = ZoningView['layers'][number];
 type Translate = (key: string, named?: Record<string, unknown>, plural?: number) => string;
@@ -58,15 +60,10 @@ export function adviceWords({ advised }: Layer, layers: readonly Layer[], { t, f
   return t(`zones.advice.${isUnknown ? 'context-unknown' : code}`, { about: format.list(beside.map((layer) => layerName(layer, t))), correlation: format.number(figures.correlation ?? 0, 2), structure: format.number(figures.structure ?? 0, 2), clearest: format.number(figures.clearest ?? 0, 2) });
 }
 
-/**
- * The advised weight where it was not followed, else null. Zones follow from what weights are to each other, so it is told on the scale of those that
- * were given: three layers at 1 each are as advised where each should have a third.
- */
+/** The advised weight where it was not followed, on the scale of the weights that were given; else null. */
 export function overruledAdvice({ advised, weight }: Layer, layers: readonly Layer[]): number | null {
   if (!advised) return null;
-  const told = layers.filter((layer) => layer.advised);
-  const [given, wanted] = [told.reduce((sum, layer) => sum + layer.weight, 0), told.reduce((sum, layer) => sum + layer.advised!.weight, 0)];
-  const here = wanted > 0 ? (advised.weight * given) / wanted : advised.weight;
+  const here = advised.weight * scaleOfAdvice(layers.map((layer) => ({ weight: layer.weight, advised: layer.advised?.weight ?? null })));
   return Math.abs(here - weight) > 0.005 ? here : null;
 }
 

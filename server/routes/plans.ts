@@ -7,6 +7,7 @@ import { ofBlock } from '../../shared/contracts/queries.ts';
 import { accessOf, allow, idParam } from '../access/guard.ts';
 import { dayOfPlans } from '../services/plans/dayOfPlans.ts';
 import { divisionsOf } from '../services/plans/divisions.ts';
+import { earlierPlanOn } from '../services/plans/earlierPlan.ts';
 import { exportPlan, planFormats } from '../services/plans/exportPlan.ts';
 import { planBasisOf } from '../services/plans/planBasis.ts';
 import { listPlans, plannableZonings, viewPlan } from '../services/plans/viewPlan.ts';
@@ -35,6 +36,9 @@ export function planRoutes(): Router {
   });
   router.post('/zonings/:zoningId/plans', allow('plans.draw'), async (request, response) => {
     response.status(201).json(await makePlan(accessOf(request), idParam(request, 'zoningId'), newPlan.parse(request.body)));
+  });
+  router.get('/zonings/:zoningId/earlier-plans/:planId', read, async (request, response) => {
+    response.json(await earlierPlanOn(accessOf(request), idParam(request, 'zoningId'), idParam(request, 'planId')));
   });
   router.get('/plans', read, async (request, response) => {
     const { block } = ofBlock.parse(request.query);

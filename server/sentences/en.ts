@@ -233,6 +233,7 @@ export const en = {
   fault: 'Something went wrong on our side. Nothing was changed; try again, and tell us if it stays.',
   aName: 'name',
   measuresOnBothSides: '{one} and {other} are read from different sides of the rows of {block}; one walk passes a vine on one side. Make a plan for each.',
+  planOfOtherBlock: '"{plan}" is a plan of {block}; these zones are of {other}. Begin from a plan of {other}, or make a new plan.',
   tooManyToDraw: 'This plan asks for {n} vines; up to {most} are drawn at once. Widen the margins, lower the confidence or sample zones as one.',
   noVines: 'No zone of {block} has a vine to sample: all its vines are marked missing, replanted or off-type. Look at the marks of its vines in the block’s rows, then plan.',
   rowsAtStake: 'The rows of {block} would be built anew: {losses}. Send rowsMayGo with the change to do it all the same.',

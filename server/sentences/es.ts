@@ -234,6 +234,7 @@ export const es: Record<SentenceKey, string> = {
   fault: 'Algo ha fallado por nuestra parte. No se ha cambiado nada; inténtelo de nuevo y avísenos si continúa.',
   aName: 'nombre',
   measuresOnBothSides: '{one} y {other} se leen desde lados distintos de las hileras de {block}; un recorrido pasa por un solo lado de cada cepa. Haga un plan para cada medida.',
+  planOfOtherBlock: '«{plan}» es un plan de {block}; estas zonas son de {other}. Parta de un plan de {other} o haga un plan nuevo.',
   tooManyToDraw: 'Este plan pide {n} cepas; se sortean como mucho {most} de una vez. Amplíe los márgenes, baje la confianza o muestree zonas juntas.',
   noVines: 'Ninguna zona de {block} tiene una cepa que muestrear: todas están marcadas como marra, reposición u otra variedad. Mire las marcas de sus cepas en las hileras de la parcela y haga después el plan.',
   rowsAtStake: 'Las hileras de {block} se harían de nuevo: {losses}. Para hacerlo de todos modos, envíe rowsMayGo con el cambio.',

@@ -234,6 +234,7 @@ export const fr: Record<SentenceKey, string> = {
   fault: 'Quelque chose a échoué de notre côté. Rien n’a été modifié ; réessayez, et dites-le-nous si cela persiste.',
   aName: 'nom',
   measuresOnBothSides: '{one} et {other} se lisent de côtés différents des rangs de {block} ; une tournée passe d’un seul côté de chaque cep. Faites un plan pour chaque mesure.',
+  planOfOtherBlock: '« {plan} » est un plan de {block} ; ces zones sont celles de {other}. Partez d’un plan de {other} ou faites un nouveau plan.',
   tooManyToDraw: 'Ce plan demande {n} ceps ; on en tire {most} au plus à la fois. Élargissez les marges, baissez la confiance ou échantillonnez des zones ensemble.',
   noVines: 'Aucune zone de {block} n’a de cep à prélever : tous ses ceps sont notés manquants, remplacés ou hors type. Regardez les marques de ses ceps dans les rangs de la parcelle, puis planifiez.',
   rowsAtStake: 'Les rangs de {block} seraient reconstruits : {losses}. Envoyez rowsMayGo avec le changement pour le faire quand même.',

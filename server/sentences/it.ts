@@ -234,6 +234,7 @@ export const it: Record<SentenceKey, string> = {
   fault: 'Qualcosa è andato storto da parte nostra. Nulla è stato cambiato; riprovi e ci avvisi se continua.',
   aName: 'nome',
   measuresOnBothSides: '{one} e {other} si leggono da lati diversi dei filari di {block}; un giro passa da un solo lato di ogni ceppo. Faccia un piano per ogni misura.',
+  planOfOtherBlock: '«{plan}» è un piano di {block}; queste zone sono di {other}. Parta da un piano di {other} o faccia un piano nuovo.',
   tooManyToDraw: 'Questo piano chiede {n} ceppi; se ne estraggono al massimo {most} alla volta. Allarghi i margini, abbassi la confidenza o campioni zone insieme.',
   noVines: 'Nessuna zona di {block} ha un ceppo da campionare: tutti i suoi ceppi sono segnati come fallanze, rimpiazzi o altro vitigno. Guardi i segni dei ceppi nei filari dell’appezzamento, poi pianifichi.',
   rowsAtStake: 'I filari di {block} sarebbero rifatti: {losses}. Invii rowsMayGo con la modifica per farlo comunque.',

@@ -234,6 +234,7 @@ export const pt: Record<SentenceKey, string> = {
   fault: 'Algo falhou do nosso lado. Nada foi alterado; tente de novo e avise-nos se continuar.',
   aName: 'nome',
   measuresOnBothSides: '{one} e {other} leem-se de lados diferentes dos bardos de {block}; um percurso passa de um só lado de cada cepa. Faça um plano para cada medida.',
+  planOfOtherBlock: '«{plan}» é um plano de {block}; estas zonas são de {other}. Parta de um plano de {other} ou faça um plano novo.',
   tooManyToDraw: 'Este plano pede {n} cepas; sorteiam-se no máximo {most} de cada vez. Alargue as margens, baixe a confiança ou amostre zonas juntas.',
   noVines: 'Nenhuma zona de {block} tem uma cepa para amostrar: todas estão marcadas como falha, retancha ou outra casta. Veja as marcas das cepas nos bardos da parcela e depois faça o plano.',
   rowsAtStake: 'Os bardos de {block} seriam feitos de novo: {losses}. Para o fazer mesmo assim, envie rowsMayGo com a alteração.',

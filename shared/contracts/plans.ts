@@ -2,7 +2,7 @@ import { z } from 'zod';
 import { postColour } from './blocks.ts';
 import { id, lonLat } from './common.ts';
 import { planBasis } from './planBasis.ts';
-import { planChoices } from './planChoices.ts';
+import { plannedMeasure, planChoices } from './planChoices.ts';
 
 /** How far a zone is for one measure, with what was read on the latest visit. */
 export const planStanding = z.object({
@@ -109,6 +109,19 @@ export const planView = planSummary.extend({
   oldDraws: z.array(oldDraw),
 });
 export type PlanView = z.infer<typeof planView>;
+
+/** What a new plan on other zones takes over from an earlier plan of the block. */
+export const earlierPlan = z.object({
+  id,
+  name: z.string(),
+  zoningNumber: z.number().int(),
+  seasonName: z.string(),
+  /** As asked then; without measures where none of them is in use any more. */
+  choices: planChoices.extend({ measures: z.array(plannedMeasure) }),
+  /** What does not make sense there: zones of that plan, by number, of which something was said that fits no zone now, and measures out of use. */
+  leftOut: z.object({ zones: z.array(z.number().int()), measures: z.array(z.object({ code: z.string(), name: z.string() })) }),
+});
+export type EarlierPlan = z.infer<typeof earlierPlan>;
 
 export const plannableZoning = z.object({ id, number: z.number().int(), blockId: id, blockName: z.string() });
 export type PlannableZoning = z.infer<typeof plannableZoning>;

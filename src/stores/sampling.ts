@@ -4,7 +4,7 @@ import type { MeasureChange, MeasureView, newMeasure } from '../../shared/contra
 import type { BlockRowsView } from '../../shared/contracts/rows.ts';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import type { BasisChoices, NewPlan, PlanChange, PlanChoices } from '../../shared/contracts/planChoices.ts';
-import type { PlanList, PlanStanding, PlanView, ZoneDivision } from '../../shared/contracts/plans.ts';
+import type { EarlierPlan, PlanList, PlanStanding, PlanView, ZoneDivision } from '../../shared/contracts/plans.ts';
 import type { DayWalk, PlanWalk } from '../../shared/contracts/planWalks.ts';
 import type { FieldRound, newDay, newRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PersonView } from '../../shared/contracts/people.ts';
@@ -27,6 +27,7 @@ export const useSamplingStore = defineStore('sampling', () => {
 
   const plans = (estateId: string) => http.get<PlanList>(`${base(estateId)}/plans`);
   const basis = (estateId: string, zoningId: string, how?: BasisChoices) => http.get<PlanBasis>(`${base(estateId)}/zonings/${zoningId}/plan-basis`, how ? { query: { ...how.spread, edgeRows: how.draw.edgeRows, endVines: how.draw.endVines, borderM: how.draw.borderM ?? undefined } } : {});
+  const earlierPlan = (estateId: string, zoningId: string, planId: string) => http.get<EarlierPlan>(`${base(estateId)}/zonings/${zoningId}/earlier-plans/${planId}`);
   const plan = (estateId: string, planId: string) => http.get<PlanView>(`${base(estateId)}/plans/${planId}`);
   const make = (estateId: string, zoningId: string, made: NewPlan) => http.post<PlanView>(`${base(estateId)}/zonings/${zoningId}/plans`, made);
   const change = (estateId: string, planId: string, changed: PlanChange) => http.patch<PlanView>(`${base(estateId)}/plans/${planId}`, changed);
@@ -58,5 +59,5 @@ export const useSamplingStore = defineStore('sampling', () => {
   const rows = (estateId: string, blockId: string) => http.get<BlockRowsView>(`${base(estateId)}/blocks/${blockId}/rows`);
   const people = async (estateId: string) => (await http.get<Listed<PersonView>>(`${base(estateId)}/people`)).items;
 
-  return { plans, basis, plan, make, change, lock, redraw, download, rounds, round, send, endRound, sheet, labels, blankLabels, divisions, walk, day, sendDay, daySheet, standing, measures, addMeasure, changeMeasure, rows, people };
+  return { plans, basis, earlierPlan, plan, make, change, lock, redraw, download, rounds, round, send, endRound, sheet, labels, blankLabels, divisions, walk, day, sendDay, daySheet, standing, measures, addMeasure, changeMeasure, rows, people };
 });

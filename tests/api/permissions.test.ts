@@ -140,6 +140,7 @@ const doors: Door[] = [
   door('get', `/earlier-readings/${nobody}/original`, 'readings.import'),
   door('get', `/zonings/${nobody}/plan-basis`, 'plans.margins', 'propose'),
   door('get', `/zonings/${nobody}/plans`, 'plans.margins', 'propose'),
+  door('get', `/zonings/${nobody}/earlier-plans/${nobody}`, 'plans.margins', 'propose'),
   door('post', `/zonings/${nobody}/plans`, 'plans.draw'),
   door('get', '/plans', 'plans.margins', 'propose'),
   door('get', `/plans/${nobody}`, 'plans.margins', 'propose'),

@@ -5,7 +5,7 @@ import { join } from 'node:path';
 import type { FeatureCollection, MultiPoint, Point } from 'geojson';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
-import type { PlanList, PlanView } from '../../shared/contracts/plans.ts';
+import type { EarlierPlan, PlanList, PlanView } from '../../shared/contracts/plans.ts';
 import { planChoices } from '../../shared/contracts/planChoices.ts';
 import type { FieldRound, RoundSummary } from '../../shared/contracts/rounds.ts';
 import type { PublishEffects } from '../../shared/contracts/zonings.ts';
@@ -360,6 +360,45 @@ describe('a plan on zones that are published anew', () => {
     expect(await AuditEntry.query().where({ subjectId: roundId, action: 'rounds.callOff' })).toHaveLength(1);
     const after = await effects(await version(6, same.labels!));
     expect([after.openRounds, after.byZone.map(({ sampled }) => sampled).sort(), after.byZone.map(({ toVisit }) => toVisit)]).toEqual([[], [0, 0, 1], [0, 0, 0]]);
+  });
+
+  it('gives what it asked to a plan on the new ones, as far as it makes sense there', async () => {
+    const { zoningId, blockId } = await makeStripBlock(estate, { name: 'Handed on', x: 1200 });
+    const { id: _id, createdAt: _at, ...same } = await Zoning.query().findById(zoningId).throwIfNotFound();
+    // The strips the other way round, the middle one and the last as one.
+    const other = await Zoning.query().insert({ ...same, number: 2, state: 'draft', labels: Buffer.from(encodeCells(decodeLabels(same.labels!).map((zone) => [0, 2, 1, 1][zone]!))) } as never);
+    const brix = { code: 'brix', margin: 0.6, marginKind: 'absolute', confidence: 0.9, means: { 1: 21 } };
+    const asked = { measures: [brix, clusters], people: 3, minimum: 7, secondsPerVine: 33, pace: { kmPerHour: 2 }, zoneSeconds: { 1: 40, 2: 15, 3: 25 } };
+    const made = (await manager.post(`${base()}/zonings/${zoningId}/plans`, { name: 'Sugar', ...asked })).body as PlanView;
+    const takenOn = async (on: string, planId = made.id) => manager.get(`${base()}/zonings/${on}/earlier-plans/${planId}`);
+
+    expect((await takenOn(zoningId)).body).toEqual({ id: made.id, name: 'Sugar', zoningNumber: 1, seasonName: made.basis.seasonName, choices: made.choices, leftOut: { zones: [], measures: [] } });
+    const there = (await takenOn(other.id)).body as EarlierPlan;
+    expect(there.choices).toEqual({ ...made.choices, measures: [{ ...brix, means: { 2: 21 } }, clusters], zoneSeconds: { 2: 40, 1: 15 } });
+    expect(there.leftOut).toEqual({ zones: [3], measures: [] });
+
+    // Measures that the estate has given up since, and a plan from the days before walks were tried, whose time at a vine held the way to it.
+    await MeasureRecord.query().where({ estateId: estate.estateId, code: 'brix' }).patch({ inUse: false });
+    await app.knex.raw("update plans set result = jsonb_set(result, '{basis,walks}', '[]') where id = ?", [made.id]);
+    const later = (await takenOn(other.id)).body as EarlierPlan;
+    await MeasureRecord.query().where({ estateId: estate.estateId, code: 'brix' }).patch({ inUse: true });
+    expect(later.choices).toMatchObject({ measures: [clusters], secondsPerVine: made.basis.settings.setUpSeconds, pace: { kmPerHour: made.basis.settings.walkingKmPerHour }, people: 3 });
+    expect(later.leftOut.measures.map(({ code }) => code)).toEqual(['brix']);
+
+    // Vines of another outline are not those of the plan: what was said of its zones is said of none.
+    await Zoning.query().findById(zoningId).patch({ gridKey: 'before the outline changed' });
+    expect((await takenOn(other.id)).body).toMatchObject({ choices: { zoneSeconds: {} }, leftOut: { zones: [1, 2, 3] } });
+
+    const elsewhere = await plan({ name: 'Next door' });
+    const refused = await takenOn(other.id, elsewhere.id);
+    expect([refused.status, refused.body.code, refused.body.detail]).toEqual([422, 'otherBlock', '"Next door" is a plan of Zoned plot; these zones are of Handed on. Begin from a plan of Handed on, or make a new plan.']);
+    const neighbour = await app.addEstate('Neighbour');
+    const theirs = await makeStripBlock(neighbour);
+    const theirManager = await app.as((await app.addPerson(neighbour.estateId, 'manager')).email);
+    const theirPlan = (await theirManager.post(`/api/estates/${neighbour.estateId}/zonings/${theirs.zoningId}/plans`, { name: 'Theirs', measures: [clusters] })).body as PlanView;
+    for (const [on, planId] of [[other.id, theirPlan.id], [theirs.zoningId, made.id], [theirs.zoningId, theirPlan.id], [other.id, randomUUID()]]) expect((await takenOn(on!, planId)).status).toBe(404);
+    expect((await takenOn(other.id, 'no-id')).status).toBe(404);
+    expect(await Plan.query().where({ estateId: estate.estateId, blockId })).toHaveLength(1);
   });
 });
 

@@ -126,6 +126,27 @@ describe('from a pilot to paper', () => {
     await page.waitForURL(/\/zones$/);
   });
 
+  it('the pilot on the zones of before hands on what it asked to a new plan, which can be changed and leaves the old one as it was', async () => {
+    const before = await desk.ask<PlanView>(`/plans/${pilotId}`);
+    await page.goto(`${app.url}/e/${desk.estateId}/plans/${pilotId}`);
+    await page.getByRole('link', { name: 'New plan on version 2' }).click();
+    await page.getByText(`Taken from plan “${before.name}” of version 1; please check it.`).waitFor();
+    await page.getByRole('checkbox', { name: 'Pruning weight in the plan', checked: true }).waitFor();
+    expect(await page.getByRole('checkbox', { name: / in the plan$/, checked: true }).count()).toBe(1);
+    expect(await desk.vinesAsked()).toBe(pilotVines);
+    expect((await desk.vinesByZone()).zones).toHaveLength(before.basis.zones.length + 1);
+    await page.getByRole('textbox', { name: 'Vines in the pilot' }).fill(String(pilotVines / 2));
+    await page.keyboard.press('Tab');
+    await expect.poll(() => desk.vinesAsked()).toBe(pilotVines / 2);
+    await desk.draw();
+    await page.getByText('Taken from plan').waitFor({ state: 'detached' });
+    const made = await desk.plan();
+    expect(made.choices).toEqual({ ...before.choices, pilotVines: pilotVines / 2 });
+    expect([made.zoningNumber, made.state, made.replacedBy]).toEqual([2, 'draft', null]);
+    const after = await desk.ask<PlanView>(`/plans/${pilotId}`);
+    expect(after).toEqual({ ...before, runs: after.runs });
+  });
+
   it('a plan on the divided zones asks for what the division promised, is drawn and locked', async () => {
     await desk.newPlan();
     await desk.measureOnly('Pruning weight');

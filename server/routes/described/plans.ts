@@ -2,7 +2,7 @@ import { z } from 'zod';
 import { planBasis } from '../../../shared/contracts/planBasis.ts';
 import { basisQuestion, newPlan, planChange, planRedraw } from '../../../shared/contracts/planChoices.ts';
 import { dayQuestion, dayWalk, planWalk, walkQuestion } from '../../../shared/contracts/planWalks.ts';
-import { divisionQuestion, planList, planStanding, planSummary, planView, zoneDivision } from '../../../shared/contracts/plans.ts';
+import { divisionQuestion, earlierPlan, planList, planStanding, planSummary, planView, zoneDivision } from '../../../shared/contracts/plans.ts';
 import { ofBlock } from '../../../shared/contracts/queries.ts';
 import { planExport } from '../plans.ts';
 import { belowEstate, listOf, type Operations } from './operation.ts';
@@ -13,6 +13,7 @@ export const plans: Operations = belowEstate({
   'post /zonings/:zoningId/divisions': { does: 'Zones that a plan asks too much of, divided where their readings say that this saves work', body: divisionQuestion, answer: z.object({ items: z.array(zoneDivision) }) },
   'get /zonings/:zoningId/plans': { does: 'Plans on these zones', answer: listOf(planSummary) },
   'post /zonings/:zoningId/plans': { does: 'Make a sampling plan and draw its vines', body: newPlan, answer: planView, status: 201 },
+  'get /zonings/:zoningId/earlier-plans/:planId': { does: 'What a new plan on these zones takes over from an earlier plan of the block', answer: earlierPlan },
   'get /plans': { does: 'Plans, and zones that a plan could be made on', query: ofBlock, answer: planList },
   'post /plans/day': { does: 'Plans of several blocks in the quickest order from gate to gate', body: dayQuestion, answer: dayWalk },
   'get /plans/:planId': { does: 'A plan with its vines', answer: planView },

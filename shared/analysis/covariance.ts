@@ -33,7 +33,7 @@ export function lagIndex({ width, height }: { width: number; height: number }, d
 export function lagSums(plane: MaskedPlane, values: ArrayLike<number>): LagSums {
   const transform = createPlaneTransform(powerOfTwoAtLeast(2 * plane.width), powerOfTwoAtLeast(2 * plane.height));
   const spectrum = transform.forward(packed(plane, values, transform));
-  const power = powerOf(spectrum, transform, 'both');
+  const power = powerOf(spectrum, transform);
   const lags = transform.inverse(power);
   const size = transform.width * transform.height;
   const products = new Float64Array(size);
@@ -43,17 +43,6 @@ export function lagSums(plane: MaskedPlane, values: ArrayLike<number>): LagSums 
     pairs[i] = Math.round(lags[2 * i + 1]!);
   }
   return { transform, products, pairs };
-}
-
-/**
- * For every lag half the sum of squared differences, which over the pairs is the variogram (Matheron 1963, from memory), here by
- * Fourier transform like the products (Marcotte 1996, from memory). It knows no mean, and high values on an edge, which has fewer
- * pairs at longer lags, do not pass for roughness, as they do in the products. Two columns 1 and −1 of two cells: 4 at dx = 1.
- */
-export function halfSquaredDifferences(plane: MaskedPlane, values: ArrayLike<number>, { transform, products }: LagSums): Float64Array {
-  const spectrum = transform.forward(packed(plane, Float64Array.from(values, (value) => value * value), transform));
-  const lags = transform.inverse(powerOf(spectrum, transform, 'shared'));
-  return products.map((product, i) => lags[2 * i]! - product);
 }
 
 /** The masked values as real part and the mask as imaginary part of the padded plane. */
@@ -73,10 +62,9 @@ function packed({ width, height, mask }: MaskedPlane, values: ArrayLike<number>,
 
 /**
  * From the transform F of a + ib (a, b real) by A = (F(k) + F̄(−k))/2, B = (F(k) − F̄(−k))/2i: the plane |A|² + i|B|², whose inverse
- * transform holds the lag sums of a as real part and those of b as imaginary part, or, shared, the real part of A·B̄, whose inverse is
- * the mean of the lag sums of a with b and of b with a.
+ * transform holds the lag sums of a as real part and those of b as imaginary part.
  */
-function powerOf(spectrum: Float64Array, { width, height }: PlaneTransform, of: 'both' | 'shared'): Float64Array {
+function powerOf(spectrum: Float64Array, { width, height }: PlaneTransform): Float64Array {
   const power = new Float64Array(spectrum.length);
   for (let row = 0; row < height; row++) {
     const mirrorRow = (height - row) % height;
@@ -87,12 +75,8 @@ function powerOf(spectrum: Float64Array, { width, height }: PlaneTransform, of: 
       const imaginaryA = (spectrum[at + 1]! - spectrum[mirror + 1]!) / 2;
       const realB = (spectrum[at + 1]! + spectrum[mirror + 1]!) / 2;
       const imaginaryB = (spectrum[mirror]! - spectrum[at]!) / 2;
-      if (of === 'shared') {
-        power[at] = realA * realB + imaginaryA * imaginaryB;
-      } else {
-        power[at] = realA * realA + imaginaryA * imaginaryA;
-        power[at + 1] = realB * realB + imaginaryB * imaginaryB;
-      }
+      power[at] = realA * realA + imaginaryA * imaginaryA;
+      power[at + 1] = realB * realB + imaginaryB * imaginaryB;
     }
   }
   return power;

@@ -3,15 +3,16 @@
  * Per frequency a small matrix (power of each layer, shared power of each pair) and its Cholesky factor: white noise times
  * the factor, transformed, has the layers' covariances and cross-covariances. Multivariate circulant embedding (Chan & Wood
  * 1999) and phase-randomised surrogates of several series (Prichard & Theiler 1994), both from memory. Only the even part of
- * a cross-covariance is kept, so the matrices are real. Covariances are taken from the variogram. Cost: four transforms for each
- * layer and each pair of layers.
+ * a cross-covariance is kept, so the matrices are real. Covariances are taken from the variogram. Cost: two to
+ * four transforms for each layer and each pair of layers.
  */
 
 import { choleskyFactor } from './covarianceCholesky.ts';
 import { frequencyRings, withoutNegativePower } from './covarianceRings.ts';
 import { makeSound } from './covarianceSound.ts';
-import { halfSquaredDifferences, lagSums, type LagSums, type MaskedPlane } from './covariance.ts';
+import type { MaskedPlane } from './covariance.ts';
 import type { PlaneTransform } from './covarianceFft.ts';
+import { everySecond, packed, variogramSums, type VariogramSums } from './covarianceVariogram.ts';
 
 /** Share of the cells that a lag must have as pairs for its covariance to be believed. */
 const LEAST_PAIR_SHARE = 0.02;
@@ -29,38 +30,30 @@ export interface FieldRecipe {
 
 /** Layers must have mean 0 over the mask and be 0 outside. */
 export function fieldRecipe(plane: MaskedPlane, layers: readonly Float64Array[]): FieldRecipe {
-  const own = layers.map((layer) => variogramSums(plane, layer));
-  const transform = own[0]!.transform;
+  const sums = variogramSums(plane, layers);
+  const { transform, pairs } = sums;
   const size = transform.width * transform.height;
-  const rings = frequencyRings(transform, Math.sqrt(own[0]!.pairs[0]!));
-  const power = own.map((sums) => withoutNegativePower(spectrumOf(sums), rings));
-  const scales = power.map((spectrum, layer) => Math.sqrt((varianceOf(own[layer]!) * size) / Math.max(1e-300, sumOfPositive(spectrum))));
-  const shared = (a: number, b: number) => (a === b ? power[a]! : spectrumOf(evenCrossSums(plane, layers, { a, b, own })));
-  const spectra = layers.map((_, a) => layers.slice(0, a + 1).map((__, b) => shared(a, b)));
+  const covariances = layers.flatMap((a, at) => layers.slice(0, at + 1).map((b) => sumOfProducts(a, b) / pairs[0]!));
+  const found = spectraOf(covariances.map((covariance, i) => taperedCovariance(sums, covariance, i)), transform);
+  const spectra = layers.map((_, a) => found.slice((a * (a + 1)) / 2, (a * (a + 1)) / 2 + a + 1));
+  const rings = frequencyRings(transform, Math.sqrt(pairs[0]!));
+  spectra.forEach((row, a) => (row[a] = withoutNegativePower(row[a]!, rings)));
+  const scales = spectra.map((row, a) => Math.sqrt((covariances[(a * (a + 3)) / 2]! * size) / Math.max(1e-300, sumOfPositive(row[a]!))));
   return factorised(transform, spectra, scales);
 }
 
-/** Sums of products by the variogram: pairs times variance, minus half the squared differences. */
-function variogramSums(plane: MaskedPlane, layer: Float64Array): LagSums {
-  const sums = lagSums(plane, layer);
-  const variance = sums.products[0]! / sums.pairs[0]!;
-  const half = halfSquaredDifferences(plane, layer, sums);
-  return { ...sums, products: half.map((square, lag) => sums.pairs[lag]! * variance - square) };
+function sumOfProducts(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let cell = 0; cell < a.length; cell++) sum += a[cell]! * b[cell]!;
+  return sum;
 }
 
-/** Both layers added have the sums of each plus twice the even part of the cross sums. */
-function evenCrossSums(plane: MaskedPlane, layers: readonly Float64Array[], { a, b, own }: { a: number; b: number; own: readonly LagSums[] }): LagSums {
-  const both = variogramSums(plane, layers[a]!.map((value, cell) => value + layers[b]![cell]!));
-  const products = both.products.map((sum, lag) => (sum - own[a]!.products[lag]! - own[b]!.products[lag]!) / 2);
-  return { transform: both.transform, products, pairs: both.pairs };
-}
-
-/** Signed spectrum of a covariance tapered to zero at the width of the block, √cells. */
-function spectrumOf({ transform, products, pairs }: LagSums): Float64Array {
-  const { width, height } = transform;
+/** The covariance of a couple of layers at every lag, theirs in one place minus the variogram, tapered to zero at the width of the block, √cells. */
+function taperedCovariance({ transform: { width, height }, pairs, halves }: VariogramSums, covariance: number, couple: number): Float64Array {
+  const half = halves[couple]!;
   const cellCount = pairs[0]!;
   const reach = Math.sqrt(cellCount);
-  const plane = new Float64Array(2 * width * height);
+  const out = new Float64Array(width * height);
   for (let row = 0; row < height; row++) {
     const dy = row < height / 2 ? row : row - height;
     for (let col = 0; col < width; col++) {
@@ -68,17 +61,20 @@ function spectrumOf({ transform, products, pairs }: LagSums): Float64Array {
       const distance = Math.sqrt(dx * dx + dy * dy);
       const at = row * width + col;
       if (distance >= reach || pairs[at]! < LEAST_PAIR_SHARE * cellCount) continue;
-      plane[2 * at] = (products[at]! / pairs[at]!) * 0.5 * (1 + Math.cos((Math.PI * distance) / reach));
+      out[at] = (covariance - half[at]! / pairs[at]!) * 0.5 * (1 + Math.cos((Math.PI * distance) / reach));
     }
   }
-  const transformed = transform.forward(plane);
-  const spectrum = new Float64Array(width * height);
-  for (let i = 0; i < spectrum.length; i++) spectrum[i] = transformed[2 * i]!;
-  return spectrum;
+  return out;
 }
 
-function varianceOf({ products, pairs }: LagSums): number {
-  return products[0]! / pairs[0]!;
+/** Signed spectra of covariances: a lag and its opposite have the same one, so they are real and two share a transform. */
+function spectraOf(planes: readonly Float64Array[], transform: PlaneTransform): Float64Array[] {
+  const found: Float64Array[] = [];
+  for (let first = 0; first < planes.length; first += 2) {
+    const both = transform.forward(packed(planes.slice(first, first + 2), transform));
+    found.push(everySecond(both, 0), everySecond(both, 1));
+  }
+  return found.slice(0, planes.length);
 }
 
 function sumOfPositive(spectrum: Float64Array): number {

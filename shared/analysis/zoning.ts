@@ -33,7 +33,7 @@ import { stackBlocks, type BlockPart, type StackedBlocks } from './zoningTogethe
 import type { BlockInput, StageMark, ZoningInput, ZoningOptions, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '13';
+export const ENGINE_VERSION = '14';
 
 const ADVICE_STREAM = 40;
 const FRUIT_STREAM = 50;

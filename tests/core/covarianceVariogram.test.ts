@@ -1,39 +1,46 @@
 /** The variogram against its definition, pair by pair, and random fields against the variogram of the layer they stand for. */
 
 import { describe, expect, it } from 'vitest';
-import { halfSquaredDifferences, lagIndex, lagSums, type MaskedPlane } from '../../shared/analysis/covariance.ts';
+import { lagIndex, type MaskedPlane } from '../../shared/analysis/covariance.ts';
 import { frequencyRings, withoutNegativePower } from '../../shared/analysis/covarianceRings.ts';
 import { surrogateFields, surrogateModel } from '../../shared/analysis/covarianceSurrogates.ts';
+import { variogramSums } from '../../shared/analysis/covarianceVariogram.ts';
 import { randomNormal, seededRandom } from '../../shared/analysis/random.ts';
 import { standardiseClipped } from '../../shared/analysis/verdictField.ts';
 import { noiseBlock, slopeBlock } from '../bench/simulatedBlock.ts';
 
-/** Mean half squared difference of all pairs of cells (dx, dy) apart, as Matheron's estimator is defined. */
-function variogramByPairs({ width, height, mask }: MaskedPlane, values: ArrayLike<number>, [dx, dy]: readonly [number, number]): { half: number; pairs: number } {
+/** Half the sum of the products of both layers' differences over all pairs of cells (dx, dy) apart, as Matheron's estimators are defined; for one layer its squares. */
+function variogramByPairs({ width, height, mask }: MaskedPlane, values: ArrayLike<number>, [dx, dy]: readonly [number, number], others = values): { half: number; pairs: number } {
   let [half, pairs] = [0, 0];
   for (let row = 0; row < height; row++) {
     for (let col = 0; col < width; col++) {
       const [toRow, toCol] = [row + dy, col + dx];
       if (toRow < 0 || toRow >= height || toCol < 0 || toCol >= width) continue;
       if (mask[row * width + col] === 0 || mask[toRow * width + toCol] === 0) continue;
-      half += (values[row * width + col]! - values[toRow * width + toCol]!) ** 2 / 2;
+      const [from, to] = [row * width + col, toRow * width + toCol];
+      half += ((values[from]! - values[to]!) * (others[from]! - others[to]!)) / 2;
       pairs++;
     }
   }
   return { half, pairs };
 }
 
-describe('half squared differences', () => {
-  it('are those of all pairs of cells in the mask, at every lag and whatever is added to the values', () => {
+describe('half sums of products of differences', () => {
+  it.each([1, 2, 3])('are those of all pairs of cells in the mask, at every lag and whatever is added to the values: %i layers', (layerCount) => {
     const random = seededRandom(4);
     const plane = { width: 13, height: 9, mask: Uint8Array.from({ length: 117 }, () => (random() < 0.7 ? 1 : 0)) };
-    const values = Float64Array.from(plane.mask, (inside) => inside * (20 + randomNormal(random)));
-    const sums = lagSums(plane, values);
-    const halves = halfSquaredDifferences(plane, values, sums);
+    const layers = Array.from({ length: layerCount }, (_, layer) => Float64Array.from(plane.mask, (inside) => inside * (20 * layer + randomNormal(random))));
+    const { transform, pairs, halves } = variogramSums(plane, layers);
+    expect(halves).toHaveLength((layerCount * (layerCount + 1)) / 2);
     for (const lag of [[0, 0], [1, 0], [0, 1], [3, -2], [-5, 4], [12, 8]] as const) {
-      const { half, pairs } = variogramByPairs(plane, values, lag);
-      expect(halves[lagIndex(sums.transform, lag[0], lag[1])]).toBeCloseTo(half, 6);
-      expect(sums.pairs[lagIndex(sums.transform, lag[0], lag[1])]).toBe(pairs);
+      const at = lagIndex(transform, lag[0], lag[1]);
+      for (let a = 0, couple = 0; a < layerCount; a++) {
+        for (let b = 0; b <= a; b++, couple++) {
+          const byPairs = variogramByPairs(plane, layers[a]!, lag, layers[b]!);
+          expect(halves[couple]![at]).toBeCloseTo(byPairs.half, 6);
+          expect(pairs[at]).toBe(byPairs.pairs);
+        }
+      }
     }
   });
 });

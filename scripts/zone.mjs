@@ -5,9 +5,10 @@ import { existsSync, readFileSync, renameSync, rmSync, statSync, writeFileSync }
 import path from 'node:path';
 import { setFlagsFromString } from 'node:v8';
 import { inCheckout, root } from './checkout.mjs';
+import { loadProgram } from './zone/keptCode.mjs';
 
 const folder = inCheckout('dist/zone');
-const program = inCheckout('dist/zone/zone.mjs');
+const program = inCheckout('dist/zone/zone.cjs');
 const sourceList = inCheckout('dist/zone/sources.json');
 
 /** By the times of the files that went into it, which costs a few milliseconds. */
@@ -39,7 +40,7 @@ async function buildProgram() {
         minify: true,
         rollupOptions: {
           input: { zone: 'server/cli/zone.ts', secondThreadEntry: 'server/workers/secondThreadEntry.ts' },
-          output: { entryFileNames: '[name].mjs', chunkFileNames: '[name].mjs' },
+          output: { format: 'cjs', entryFileNames: '[name].cjs', chunkFileNames: '[name].cjs' },
         },
       },
       // It looks for its WebAssembly beside its own file.
@@ -59,4 +60,8 @@ if (!isBuilt()) {
 }
 // A run is over before much of its code pays back what optimising it costs: plainer code for it takes a tenth less CPU.
 for (const flag of ['--no-turbo-loop-peeling', '--max-inlined-bytecode-size=100', '--max-inlined-bytecode-size-cumulative=200']) setFlagsFromString(flag);
-if (process.exitCode === undefined) await import(program);
+if (process.exitCode === undefined) {
+  const { exports, keep } = loadProgram(program, inCheckout('dist/zone/main.code'));
+  await exports.main(process.argv.slice(2));
+  keep();
+}

@@ -17,9 +17,8 @@ export type ThreadAnswer = { readonly value: PartRead | BesideDone } | { readonl
 /** Null when the program runs from its source, where a thread would not find its loader. */
 export function openSecondThread(): SecondThread | null {
   if (import.meta.url.endsWith('.ts')) return null;
-  const entry = 'secondThreadEntry.mjs';
   // The GeoTIFF reader refuses to load in a thread without worker data.
-  const worker = new Worker(new URL(entry, import.meta.url), { workerData: {} });
+  const worker = new Worker(new URL('../../scripts/zone/secondThread.mjs', import.meta.url), { workerData: {} });
   worker.unref();
   const ask = <Value>(request: ThreadRequest) =>
     new Promise<Value>((resolve, reject) => {

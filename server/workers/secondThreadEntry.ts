@@ -9,12 +9,16 @@ import type { ThreadAnswer, ThreadRequest } from './secondThread.ts';
 const readers = Promise.allSettled([import('../importers/points/readPoints.ts'), import('../importers/vector/readVectors.ts'), import('../importers/raster/readRasterOntoGrids.ts')]);
 const loadBeside = () => import('../cli/zoneBeside.ts');
 
-parentPort!.on('message', (request: ThreadRequest) => {
-  void answerTo(request).then((answer) => {
-    parentPort!.postMessage(answer, largeBuffers(answer));
-    void loadBeside();
+/** `afterwards` is called when nothing is left to do. */
+export function listen(afterwards: () => void): void {
+  parentPort!.on('message', (request: ThreadRequest) => {
+    void answerTo(request).then((answer) => {
+      parentPort!.postMessage(answer, largeBuffers(answer));
+      if ('weigh' in request) afterwards();
+      else void loadBeside();
+    });
   });
-});
+}
 
 /** Cells and sums are handed over, not copied: this thread has no more use for them. */
 function largeBuffers(answer: ThreadAnswer): ArrayBuffer[] {

@@ -69,9 +69,9 @@ function gather({ squareOf, start, order, cols }: Squares, point: number, value:
 
 function rangeOf(values: Float64Array): [number, number] {
   let [low, high] = [Infinity, -Infinity];
-  for (const value of values) {
-    low = Math.min(low, value);
-    high = Math.max(high, value);
+  for (let i = 0; i < values.length; i++) {
+    if (values[i]! < low) low = values[i]!;
+    if (values[i]! > high) high = values[i]!;
   }
   return values.length === 0 ? [0, 0] : [low, high];
 }

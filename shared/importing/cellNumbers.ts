@@ -37,8 +37,8 @@ export interface CellNumber {
 export function columnMark(cells: Iterable<string>, table: DecimalMark): DecimalMark {
   let [points, commas] = [0, 0];
   for (const cell of cells) {
-    // One point is as good as many; only a comma can still change the answer.
-    if (points > 0 && !cell.includes(',')) continue;
+    // One point is as good as many; only a comma can still change the answer. Whole numbers tell nothing.
+    if (!cell.includes(',') && (points > 0 || !cell.includes('.'))) continue;
     if (/^[+-]?\d*\.(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?\.\d+/.test(cell)) points++;
     else if (/^[+-]?\d*,(\d{1,2}|\d{4,})(\D|$)/.test(cell) || /^[+-]?0?,\d+/.test(cell)) commas++;
   }

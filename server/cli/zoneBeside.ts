@@ -1,6 +1,6 @@
 import type { EdgeCoincidence } from '../../shared/analysis/layerAdviceEdges.ts';
 import { compareZoningEdges, type WorkBeside } from '../../shared/analysis/zoning.ts';
-import { weighEvidence, type ZoningEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { gapsIn, holdsIn, structuresIn, type EvidenceParts } from '../../shared/analysis/zoningEvidence.ts';
 
 /**
  * The work beside the zones as a list of tasks that two threads take from: the second thread while this one makes zones, this
@@ -12,23 +12,32 @@ export interface BesideTasks {
   readonly taken: Int32Array;
 }
 
+export interface BesideOutcome extends EvidenceParts {
+  readonly edges: ReadonlyMap<string, EdgeCoincidence>;
+}
+
 export interface BesideDone {
-  readonly evidence: ZoningEvidence | null;
-  readonly edges: ReadonlyMap<string, EdgeCoincidence> | null;
+  readonly outcome: Partial<BesideOutcome>;
   readonly seconds: Readonly<Record<string, number>>;
 }
 
-/** Does what nobody else has begun; the longer task comes first. */
+/** The longest first: whoever takes the last one then ends soon after the other. */
+export const BESIDE_TASKS: readonly { readonly name: string; readonly of: (work: WorkBeside) => Partial<BesideOutcome> }[] = [
+  { name: 'gaps', of: ({ evidence }) => ({ gaps: gapsIn(evidence) }) },
+  { name: 'layer advice', of: (work) => ({ edges: compareZoningEdges(work) }) },
+  { name: 'structures', of: ({ evidence }) => ({ structures: structuresIn(evidence) }) },
+  { name: 'holds', of: ({ evidence }) => ({ holds: holdsIn(evidence) }) },
+];
+
+/** Does what nobody else has begun. */
 export function doBeside({ work, taken }: BesideTasks): BesideDone {
-  let evidence: BesideDone['evidence'] = null;
-  let edges: BesideDone['edges'] = null;
   const seconds: Record<string, number> = {};
+  let outcome: Partial<BesideOutcome> = {};
   for (;;) {
-    const task = Atomics.add(taken, 0, 1);
+    const task = BESIDE_TASKS[Atomics.add(taken, 0, 1)];
+    if (task === undefined) return { outcome, seconds };
     const start = performance.now();
-    if (task === 0) evidence = weighEvidence(work.evidence);
-    else if (task === 1) edges = compareZoningEdges(work);
-    else return { evidence, edges, seconds };
-    seconds[task === 0 ? 'evidence' : 'layer advice'] = (performance.now() - start) / 1000;
+    outcome = { ...outcome, ...task.of(work) };
+    seconds[task.name] = (performance.now() - start) / 1000;
   }
 }

@@ -1,10 +1,11 @@
 import { renameSync, rmSync, writeFileSync } from 'node:fs';
 import { finishZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
 import type { VerdictResult } from '../../shared/analysis/verdict.ts';
+import { concludeEvidence } from '../../shared/analysis/zoningEvidence.ts';
 import type { ZoningInput, ZoningResult } from '../../shared/analysis/zoningTypes.ts';
 import type { SecondThread } from '../workers/secondThread.ts';
 import { BadInput, type ZoneArguments } from './zoneArguments.ts';
-import { doBeside, type BesideDone, type BesideTasks } from './zoneBeside.ts';
+import { doBeside, type BesideDone, type BesideOutcome, type BesideTasks } from './zoneBeside.ts';
 import { readBlock } from './zoneFiles.ts';
 import { readInputs } from './zoneInputs.ts';
 import { zonesGeoJson, zoningReport } from './zoneReport.ts';
@@ -47,7 +48,9 @@ async function zoneInTwo(input: ZoningInput, beside: SecondThread | null, mark: 
   mark('evidence');
   const there = await away;
   mark('waiting for evidence');
-  const result = finishZoning(ground, { made, edges: (here.edges ?? there?.edges)!, evidence: (here.evidence ?? there?.evidence)! }, mark);
+  const { edges, ...parts } = { ...here.outcome, ...there?.outcome } as BesideOutcome;
+  const evidence = concludeEvidence(ground.beside.evidence, parts);
+  const result = finishZoning(ground, { made, edges, evidence }, mark);
   return { result, seconds: there?.seconds ?? {} };
 }
 

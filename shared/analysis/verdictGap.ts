@@ -2,8 +2,8 @@
  * Plateaus and steps, or only a slope? k-means on the calm cells of the block is compared with k-means on the calm cells of
  * random fields that vary as smoothly but hold no zones. Gap(k) = mean over the fields of ln(W_k/W_1) minus the block's own:
  * the gap statistic (Tibshirani, Walther & Hastie 2001) with covariance-matched fields in place of a uniform reference.
- * In: evidence field. Out: per k the gap, within shares, Calinski–Harabasz and how well the weakest zone holds. Cost: for each of 20 fields one transform a
- * layer and a few k-means runs of up to 1 000 points.
+ * In: evidence field. Out: per k the gap, within shares and Calinski–Harabasz; apart from them how well the weakest zone
+ * holds. Cost: for each of 20 fields one transform a layer and a few k-means runs of up to 1 000 points.
  */
 
 import { weakestHold } from './clusterHold.ts';
@@ -20,9 +20,8 @@ export const MOST_ZONES = 6;
 const HELD_CELLS = 600;
 
 export interface GapOptions {
+  /** A random number generator at its start, the same for gaps and holds, so that both look at the same calm cells. */
   readonly random: Random;
-  /** Width of the patches that zones must come back from when they are drawn anew, with a random stream of its own. */
-  readonly hold: { readonly patchM: number; readonly random: Random };
   /** Random fields compared with; they come in pairs. */
   readonly surrogates?: number;
   /** Calm cells that enter each k-means. */
@@ -31,7 +30,10 @@ export interface GapOptions {
   readonly restarts?: number;
 }
 
-export interface GapAtK {
+const SAMPLE_COUNT = 1000;
+
+/** What random fields say of k zones. */
+export interface GapRow {
   readonly k: number;
   /** W_k / W_1 on the calm cells. */
   readonly withinShare: number;
@@ -40,21 +42,18 @@ export interface GapAtK {
   readonly gapSd: number;
   /** Calinski–Harabasz on the calm cells. */
   readonly separation: number;
+}
+
+export interface GapAtK extends GapRow {
   /** How well the weakest of k zones comes back when patches of ground are drawn anew, 0…1 (see clusterHold). */
   readonly holds: number;
 }
 
 /** One row for each k = 2…6. */
-export function gapCurve(field: EvidenceField, options: GapOptions): GapAtK[] {
-  const { random, hold, surrogates = 20, sampleCount = 1000, restarts = 1 } = options;
+export function gapRows(field: EvidenceField, { random, surrogates = 20, sampleCount = SAMPLE_COUNT, restarts = 1 }: GapOptions): GapRow[] {
   const finder = calmFinder(field, { cellSizeM: field.cellSizeM });
   const logsOf = (layers: readonly Float64Array[]) => logWithinShares(pointsAt(layers, sampledCells(finder.find(layers), { sampleCount, random })), restarts, random);
-  const cells = sampledCells(finder.find(field.layers), { sampleCount, random });
-  const points = pointsAt(field.layers, cells);
-  const own = logWithinShares(points, restarts, random);
-  const held = sampledCells(cells, { sampleCount: HELD_CELLS, random: hold.random });
-  const heldPoints = pointsAt(field.layers, held);
-  const patches = patchesOf(held, field, hold.patchM);
+  const own = logsOf(field.layers);
   const references: (readonly number[])[] = [];
   for (const layers of surrogateFields(surrogateModel(field, field.layers), surrogates, random)) references.push(logsOf(layers).logs);
   return own.logs.map((log, i) => {
@@ -62,8 +61,24 @@ export function gapCurve(field: EvidenceField, options: GapOptions): GapAtK[] {
     const mean = references.reduce((sum, logs) => sum + logs[i]!, 0) / references.length;
     const squares = references.reduce((sum, logs) => sum + (logs[i]! - mean) ** 2, 0);
     const withinShare = Math.exp(log);
-    return { k, withinShare, gap: mean - log, gapSd: Math.sqrt(squares / (references.length - 1)), separation: (1 - withinShare) / (k - 1) / (withinShare / (own.count - k)), holds: weakestHold(heldPoints, patches, { k, random: hold.random }) };
+    return { k, withinShare, gap: mean - log, gapSd: Math.sqrt(squares / (references.length - 1)), separation: (1 - withinShare) / (k - 1) / (withinShare / (own.count - k)) };
   });
+}
+
+export interface HoldsOptions {
+  /** As for the gaps. */
+  readonly random: Random;
+  readonly sampleCount?: number;
+  /** Width of the patches that zones must come back from when they are drawn anew, with a random stream of its own. */
+  readonly hold: { readonly patchM: number; readonly random: Random };
+}
+
+/** For each k = 2…6 how well the weakest zone of the calm cells comes back from other ground. */
+export function holdsOfEveryNumber(field: EvidenceField, { random, sampleCount = SAMPLE_COUNT, hold }: HoldsOptions): number[] {
+  const cells = sampledCells(calmFinder(field, { cellSizeM: field.cellSizeM }).find(field.layers), { sampleCount, random });
+  const held = sampledCells(cells, { sampleCount: HELD_CELLS, random: hold.random });
+  const [points, patches] = [pointsAt(field.layers, held), patchesOf(held, field, hold.patchM)];
+  return Array.from({ length: MOST_ZONES - 1 }, (_, i) => weakestHold(points, patches, { k: i + 2, random: hold.random }));
 }
 
 interface SampleOptions {

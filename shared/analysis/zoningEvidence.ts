@@ -7,9 +7,9 @@
 import type { Cells, Grid } from './grid.ts';
 import { judge, type VerdictResult } from './verdict.ts';
 import { evidenceField, type EvidenceField } from './verdictField.ts';
-import { gapCurve, type GapAtK } from './verdictGap.ts';
+import { gapRows, holdsOfEveryNumber, type GapAtK, type GapRow } from './verdictGap.ts';
 import { groundThatStandsOut, type StandingOut } from './verdictStandOut.ts';
-import { layerStructures, patchWidthM } from './verdictStructure.ts';
+import { layerStructures, patchWidthM, type LayerStructure } from './verdictStructure.ts';
 import { withoutWaves } from './verdictWaves.ts';
 import { streamOf } from './zoningFit.ts';
 import type { PreparedLayer } from './zoningPrepare.ts';
@@ -78,17 +78,45 @@ export function structuresOf(grid: Grid, layers: readonly { readonly id: string;
   return new Map(layerStructures(field, areaM2).map(({ structure }, l) => [layers[l]!.id, structure]));
 }
 
-export function weighEvidence({ areaM2, seed, gapField, gapIds, structureField, measuredIds }: EvidenceTask): ZoningEvidence {
-  const structures = structureField === null ? [] : layerStructures(structureField, areaM2);
-  const weigh = (field: EvidenceField | null, evenedIds: readonly string[] = []) => {
-    const curve = field === null ? [] : gapCurve(field, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
+/** What is weighed, in parts that know nothing of each other, so that two threads may share them. */
+export interface EvidenceParts {
+  readonly structures: readonly LayerStructure[];
+  readonly gaps: readonly GapRow[];
+  /** For each row of the gaps. */
+  readonly holds: readonly number[];
+}
+
+export function structuresIn({ structureField, areaM2 }: EvidenceTask): LayerStructure[] {
+  return structureField === null ? [] : layerStructures(structureField, areaM2);
+}
+
+export function gapsIn({ gapField, seed }: EvidenceTask): GapRow[] {
+  return gapField === null ? [] : gapRows(gapField, { random: streamOf(seed, EVIDENCE_STREAM) });
+}
+
+export function holdsIn({ gapField, seed, areaM2 }: EvidenceTask): number[] {
+  return gapField === null ? [] : holdsOfEveryNumber(gapField, { random: streamOf(seed, EVIDENCE_STREAM), hold: { patchM: patchWidthM(areaM2), random: streamOf(seed, HOLD_STREAM) } });
+}
+
+export function weighEvidence(task: EvidenceTask): ZoningEvidence {
+  return concludeEvidence(task, { structures: structuresIn(task), gaps: gapsIn(task), holds: holdsIn(task) });
+}
+
+export function concludeEvidence(task: EvidenceTask, parts: EvidenceParts): ZoningEvidence {
+  const { areaM2, seed, gapField, gapIds, measuredIds } = task;
+  const { structures } = parts;
+  const weigh = ({ gaps, holds }: Pick<EvidenceParts, 'gaps' | 'holds'>, field: EvidenceField | null, evenedIds: readonly string[] = []) => {
+    const curve = gaps.map((row, i) => ({ ...row, holds: holds[i]! }));
     return { field, curve, verdict: judge({ areaM2, layerIds: measuredIds, structures, curve, evenedIds }) };
   };
-  let weighed = weigh(gapField);
+  let weighed = weigh(parts, gapField);
   const isPlain = gapField !== null && structures.length > 0 && weighed.verdict.reasons.every(({ code }) => code !== 'structure');
   const evened = isPlain ? withoutWaves(gapField) : null;
   // Stripes have plateaus of their own; what is left of the layers is what may be zoned.
-  if (evened) weighed = weigh(evened.field, gapIds.filter((_, l) => evened.evened[l]));
+  if (evened) {
+    const left = { ...task, gapField: evened.field };
+    weighed = weigh({ gaps: gapsIn(left), holds: holdsIn(left) }, evened.field, gapIds.filter((_, l) => evened.evened[l]));
+  }
   const { field, curve, verdict } = weighed;
   // At the block's edge, where cells are cut, something of the stripes stays and would stand out.
   const scanned = field && { ...field, layers: field.layers.filter((_, l) => !evened?.evened[l]) };

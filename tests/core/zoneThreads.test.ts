@@ -5,8 +5,9 @@ import { join, resolve } from 'node:path';
 import type { FeatureCollection, MultiPolygon } from 'geojson';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { finishZoning, makeZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import { concludeEvidence } from '../../shared/analysis/zoningEvidence.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
-import { doBeside } from '../../server/cli/zoneBeside.ts';
+import { BESIDE_TASKS, doBeside, type BesideOutcome } from '../../server/cli/zoneBeside.ts';
 import { runZoneCommand } from '../../server/cli/zoneCommand.ts';
 import { geoPackageOf } from '../../server/exporters/features/geoPackage.ts';
 import { readRasterOntoGrids, readSharedRows, type PictureSums } from '../../server/importers/raster/readRasterOntoGrids.ts';
@@ -61,12 +62,14 @@ describe('the work beside the zones', () => {
     const { grid, truth } = written.block;
     const input = { grid, layers: [...layersOf(written.block), { id: 'soil', type: 'soil', role: 'context', kind: 'number', cells: Float32Array.from(truth), weight: null } as const] };
     const whole = JSON.stringify(makeZoning(input));
-    for (const first of [0, 1, 2]) {
+    for (let first = 0; first <= BESIDE_TASKS.length; first++) {
       const ground = prepareZoning(input);
-      const work = structuredClone(ground.beside);
-      const [there, here] = [doBeside({ work, taken: Int32Array.of(first) }), doBeside({ work: ground.beside, taken: Int32Array.of(first === 1 ? 0 : 2 - first) })];
-      const parts = { made: zonesOfEveryNumber(ground), edges: (there.edges ?? here.edges)!, evidence: (there.evidence ?? here.evidence)! };
-      expect(JSON.stringify(finishZoning(ground, parts))).toBe(whole);
+      // One thread has all tasks from the given one on, the other those before it.
+      const there = doBeside({ work: structuredClone(ground.beside), taken: Int32Array.of(first) }).outcome;
+      const here = Object.assign({}, ...BESIDE_TASKS.slice(0, first).map(({ of }) => of(ground.beside))) as Partial<BesideOutcome>;
+      expect(Object.keys(there)).toHaveLength(BESIDE_TASKS.length - first);
+      const { edges, ...parts } = { ...here, ...there } as BesideOutcome;
+      expect(JSON.stringify(finishZoning(ground, { made: zonesOfEveryNumber(ground), edges, evidence: concludeEvidence(ground.beside.evidence, parts) }))).toBe(whole);
     }
   });
 });

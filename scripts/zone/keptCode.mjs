@@ -35,6 +35,7 @@ export function loadProgram(first, keptPath) {
     exports: load(first),
     keep() {
       if (!isNew) return;
+      isNew = false;
       for (const { script, key } of loaded.values()) kept.set(key, script.createCachedData());
       writeKept(keptPath, kept);
     },

@@ -1,7 +1,8 @@
 import { renameSync, rmSync, writeFileSync } from 'node:fs';
-import { finishZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import { prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
 import type { VerdictResult } from '../../shared/analysis/verdict.ts';
 import { concludeEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { decideZones, drawZones, figuresOfZones, zoningRecord } from '../../shared/analysis/zoningFinish.ts';
 import type { ZoningInput, ZoningResult } from '../../shared/analysis/zoningTypes.ts';
 import type { SecondThread } from '../workers/secondThread.ts';
 import { BadInput, type ZoneArguments } from './zoneArguments.ts';
@@ -37,7 +38,7 @@ function verdictInWords({ verdict, isJudged, reasons }: VerdictResult): string {
   return reasons.some(({ code }) => code === 'too-small') ? 'too small to judge from layers alone' : 'no measured layer to judge from';
 }
 
-/** The zoning of `makeZoning`, with the second thread on the work beside the zones. */
+/** The zoning of `makeZoning`, with the second thread on the work beside the zones, then on their polygons. */
 async function zoneInTwo(input: ZoningInput, beside: SecondThread | null, mark: (stage: string) => void): Promise<{ result: ZoningResult; seconds: BesideDone['seconds'] }> {
   const ground = prepareZoning(input);
   mark('prepare');
@@ -49,9 +50,14 @@ async function zoneInTwo(input: ZoningInput, beside: SecondThread | null, mark: 
   const there = await away;
   mark('waiting for evidence');
   const { edges, ...parts } = { ...here.outcome, ...there?.outcome } as BesideOutcome;
-  const evidence = concludeEvidence(ground.beside.evidence, parts);
-  const result = finishZoning(ground, { made, edges, evidence }, mark);
-  return { result, seconds: there?.seconds ?? {} };
+  const found = { made, edges, evidence: concludeEvidence(ground.beside.evidence, parts) };
+  const decided = decideZones(ground, found);
+  mark('number');
+  const drawnAway = beside?.draw(decided.toDraw) ?? null;
+  const figures = figuresOfZones(ground, decided, mark);
+  const drawn = (await drawnAway) ?? drawZones(decided.toDraw);
+  mark('polygons');
+  return { result: zoningRecord(ground, found, { decided, drawn, figures }), seconds: there?.seconds ?? {} };
 }
 
 /** All files or none: written beside their places first, then moved. */

@@ -1,18 +1,22 @@
 import { Worker } from 'node:worker_threads';
 import type { BesideDone, BesideTasks } from '../cli/zoneBeside.ts';
+import type { drawZones, ZonesToDraw } from '../../shared/analysis/zoningFinish.ts';
 import { BadInput } from '../cli/zoneArguments.ts';
 import type { FileTasks, PartRead } from '../cli/zonePart.ts';
 import { fromCarried, type CarriedError } from './carriedError.ts';
 
-/** A thread that reads files while this one reads others, and weighs the evidence while this one makes zones. */
+/** A thread that reads files while this one reads others, and weighs the evidence while this one makes zones, and draws them. */
 export interface SecondThread {
   read(tasks: FileTasks): Promise<PartRead>;
   weigh(tasks: BesideTasks): Promise<BesideDone>;
+  draw(zones: ZonesToDraw): Promise<ZonesDrawn>;
   close(): void;
 }
 
-export type ThreadRequest = { readonly read: FileTasks } | { readonly weigh: BesideTasks };
-export type ThreadAnswer = { readonly value: PartRead | BesideDone } | { readonly refused: CarriedError } | { readonly bad: string } | { readonly fault: string };
+export type ZonesDrawn = ReturnType<typeof drawZones>;
+
+export type ThreadRequest = { readonly read: FileTasks } | { readonly weigh: BesideTasks } | { readonly draw: ZonesToDraw };
+export type ThreadAnswer = { readonly value: PartRead | BesideDone | ZonesDrawn } | { readonly refused: CarriedError } | { readonly bad: string } | { readonly fault: string };
 
 /** Null when the program runs from its source, where a thread would not find its loader. */
 export function openSecondThread(): SecondThread | null {
@@ -32,5 +36,5 @@ export function openSecondThread(): SecondThread | null {
       });
       worker.postMessage(request);
     });
-  return { read: (tasks) => ask({ read: tasks }), weigh: (tasks) => ask({ weigh: tasks }), close: () => void worker.terminate() };
+  return { read: (tasks) => ask({ read: tasks }), weigh: (tasks) => ask({ weigh: tasks }), draw: (zones) => ask({ draw: zones }), close: () => void worker.terminate() };
 }

@@ -8,14 +8,15 @@ import type { ThreadAnswer, ThreadRequest } from './secondThread.ts';
 
 const readers = Promise.allSettled([import('../importers/points/readPoints.ts'), import('../importers/vector/readVectors.ts'), import('../importers/raster/readRasterOntoGrids.ts')]);
 const loadBeside = () => import('../cli/zoneBeside.ts');
+const loadDrawing = () => import('../../shared/analysis/zoningFinish.ts');
 
-/** `afterwards` is called when nothing is left to do. */
+/** `afterwards` is called when a request has been answered and all that may be asked for is loaded. */
 export function listen(afterwards: () => void): void {
   parentPort!.on('message', (request: ThreadRequest) => {
     void answerTo(request).then((answer) => {
       parentPort!.postMessage(answer, largeBuffers(answer));
-      if ('weigh' in request) afterwards();
-      else void loadBeside();
+      if ('read' in request) void loadBeside();
+      else void loadDrawing().then(afterwards);
     });
   });
 }
@@ -29,6 +30,7 @@ function largeBuffers(answer: ThreadAnswer): ArrayBuffer[] {
 
 async function answerTo(request: ThreadRequest): Promise<ThreadAnswer> {
   try {
+    if ('draw' in request) return { value: (await loadDrawing()).drawZones(request.draw) };
     if ('weigh' in request) return { value: (await loadBeside()).doBeside(request.weigh) };
     await readers;
     return { value: await readPart(request.read) };

@@ -1,6 +1,6 @@
 import type { Cells, Grid, Labels } from '../../shared/analysis/grid.ts';
 import { polygonise } from '../../shared/analysis/polygonise.ts';
-import { describeZones } from '../../shared/analysis/zoningStats.ts';
+import { describeZones, withPolygons } from '../../shared/analysis/zoningStats.ts';
 import type { Zone, ZoningLayer } from '../../shared/analysis/zoningTypes.ts';
 
 export interface TraceInput {
@@ -13,5 +13,5 @@ export interface TraceInput {
 /** Zones drawn from labels with their statistics; numbers without ground are left out. */
 export function traceZones({ grid, labels, doubt, layers }: TraceInput): Zone[] {
   const drawn = polygonise(grid, labels);
-  return describeZones({ grid, layers, zones: { labels, doubt }, drawn }).filter((zone) => zone.polygonsLonLat !== null);
+  return withPolygons(describeZones({ grid, layers, zones: { labels, doubt } }), drawn).filter((zone) => zone.polygonsLonLat !== null);
 }

@@ -3,15 +3,27 @@
 import type { GapAtK } from './verdictGap.ts';
 import type { MembershipBands } from './zoneMemberships.ts';
 import type { ZoneCountAdvice } from './zoneCount.ts';
-import type { FeatureTable } from './zoningFit.ts';
+import type { ZonePolygons } from './polygonise.ts';
+import type { CellZones, FeatureTable } from './zoningFit.ts';
 import type { FitQuality } from './zoningQuality.ts';
-import { describeZones, zoneDifferences, type ZoneStatsInput } from './zoningStats.ts';
-import type { ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes.ts';
+import { withPolygons, zoneDifferences } from './zoningStats.ts';
+import type { Zone, ZoneEvidence, ZoningCandidate, ZoningWarning } from './zoningTypes.ts';
 
-export function candidateOf(k: number, input: ZoneStatsInput & { readonly memberships: MembershipBands | null }): ZoningCandidate {
+export interface CandidateParts {
+  readonly zones: CellZones;
+  /** What each zone is like, without polygons. */
+  readonly described: readonly Zone[];
+  /** Null leaves the polygons out. */
+  readonly drawn: readonly ZonePolygons[] | null;
+  /** Ids of the layers of numbers. */
+  readonly numeric: readonly string[];
+  readonly memberships: MembershipBands | null;
+}
+
+export function candidateOf(k: number, { zones: { labels, doubt }, described, drawn, numeric, memberships }: CandidateParts): ZoningCandidate {
   // Of several blocks zoned together one may lack a zone that the others have.
-  const zones = describeZones(input).filter(({ areaM2 }) => areaM2 > 0);
-  return { k, labels: input.zones.labels, doubt: input.zones.doubt, memberships: input.memberships, zones, differences: zoneDifferences(zones, input.layers.flatMap(({ id, kind }) => (kind === 'number' ? [id] : []))) };
+  const zones = withPolygons(described, drawn).filter(({ areaM2 }) => areaM2 > 0);
+  return { k, labels, doubt, memberships, zones, differences: zoneDifferences(zones, numeric) };
 }
 
 /** One row for each k = 1…6: the figures of the fit, of the comparison with no structure, and of the cleaned zones. */

@@ -13,11 +13,10 @@ export interface ZoneStatsInput {
   readonly grid: Grid;
   readonly layers: readonly ZoningLayer[];
   readonly zones: CellZones;
-  /** Drawn zones; null leaves the polygons out and takes areas from the cells. */
-  readonly drawn: readonly ZonePolygons[] | null;
 }
 
-export function describeZones({ grid, layers, zones: { labels, doubt }, drawn }: ZoneStatsInput): Zone[] {
+/** Zones without polygons, areas taken from the cells. */
+export function describeZones({ grid, layers, zones: { labels, doubt } }: ZoneStatsInput): Zone[] {
   const count = zoneCountOf(labels);
   const areas = cellAreas(grid, labels, count);
   const patches = patchesPerZone(grid, labels);
@@ -25,16 +24,23 @@ export function describeZones({ grid, layers, zones: { labels, doubt }, drawn }:
   const stats = layers.map((layer) => ({ layer, byZone: momentsByZone(labels, layer.cells, count) }));
   return Array.from({ length: count }, (_, i) => {
     const number = i + 1;
-    const polygons = drawn?.find(({ zone }) => zone === number) ?? null;
     return {
       number,
-      areaM2: polygons?.areaM2 ?? areas[number]!,
+      areaM2: areas[number]!,
       patches: patches[number]!,
       layers: stats.map(({ layer, byZone }): ZoneLayerStats => ({ layerId: layer.id, ...byZone[number]! })),
       doubtfulShare: doubtful[number]!,
-      polygonsXY: polygons?.polygonsXY ?? null,
-      polygonsLonLat: polygons?.polygonsLonLat ?? null,
+      polygonsXY: null,
+      polygonsLonLat: null,
     };
+  });
+}
+
+/** The zones with their polygons and the areas of these; null leaves them out. */
+export function withPolygons(zones: readonly Zone[], drawn: readonly ZonePolygons[] | null): Zone[] {
+  return zones.map((zone) => {
+    const polygons = drawn?.find((each) => each.zone === zone.number);
+    return polygons === undefined ? zone : { ...zone, areaM2: polygons.areaM2, polygonsXY: polygons.polygonsXY, polygonsLonLat: polygons.polygonsLonLat };
   });
 }
 

@@ -4,8 +4,9 @@ import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import type { FeatureCollection, MultiPolygon } from 'geojson';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { finishZoning, makeZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
+import { makeZoning, prepareZoning, zonesOfEveryNumber } from '../../shared/analysis/zoning.ts';
 import { concludeEvidence } from '../../shared/analysis/zoningEvidence.ts';
+import { decideZones, drawZones, figuresOfZones, zoningRecord } from '../../shared/analysis/zoningFinish.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 import { BESIDE_TASKS, doBeside, type BesideOutcome } from '../../server/cli/zoneBeside.ts';
 import { runZoneCommand } from '../../server/cli/zoneCommand.ts';
@@ -69,7 +70,10 @@ describe('the work beside the zones', () => {
       const here = Object.assign({}, ...BESIDE_TASKS.slice(0, first).map(({ of }) => of(ground.beside))) as Partial<BesideOutcome>;
       expect(Object.keys(there)).toHaveLength(BESIDE_TASKS.length - first);
       const { edges, ...parts } = { ...here, ...there } as BesideOutcome;
-      expect(JSON.stringify(finishZoning(ground, { made: zonesOfEveryNumber(ground), edges, evidence: concludeEvidence(ground.beside.evidence, parts) }))).toBe(whole);
+      const found = { made: zonesOfEveryNumber(ground), edges, evidence: concludeEvidence(ground.beside.evidence, parts) };
+      const decided = decideZones(ground, found);
+      const [figures, drawn] = [figuresOfZones(ground, decided), drawZones(structuredClone(decided.toDraw))];
+      expect(JSON.stringify(zoningRecord(ground, found, { decided, drawn, figures }))).toBe(whole);
     }
   });
 });

@@ -2,7 +2,7 @@ import type { Transaction } from 'objection';
 import { reachOf } from '../../../shared/catalog/permissions.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
 import { zoningOptions, type NewZoning, type ZoningRequestOptions } from '../../../shared/contracts/zonings.ts';
-import { ENGINE_VERSION } from '../../../shared/analysis/zoning.ts';
+import { ENGINE_VERSION } from '../../../shared/analysis/zoningFinish.ts';
 import { smallestPatchFor } from '../../../shared/analysis/smallestPatch.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash, NotAllowed, Unusable } from '../../errors.ts';

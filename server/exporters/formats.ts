@@ -2,13 +2,14 @@ import { geoJsonOf } from './features/geoJson.ts';
 import { geoPackageOf } from './features/geoPackage.ts';
 import { shapefileOf } from './features/shapefile.ts';
 import type { ZoneExport } from './zoneExport.ts';
-import { rowFeatures, zoneFeatures } from './zoneFeatures.ts';
+import { rowFeatures, vineFeatures, zoneFeatures } from './zoneFeatures.ts';
 import { zonesGeoJson } from './zonesGeoJson.ts';
 import { zonesGeoTiff } from './zonesGeoTiff.ts';
 import { rowsKml, zonesKml } from './zonesKml.ts';
 import { zonesLayersGeoTiff } from './zonesLayersGeoTiff.ts';
 import { zonesMembershipGeoTiff } from './zonesMembershipGeoTiff.ts';
 import { zonesRowTable } from './zonesRowTable.ts';
+import { zonesVineTable } from './zonesVineTable.ts';
 
 export interface ExportFormat {
   id: string;
@@ -18,8 +19,10 @@ export interface ExportFormat {
   withLayers?: boolean;
   /** Wants the memberships too. */
   withMemberships?: boolean;
+  /** Wants every vine with its membership too. */
+  withVines?: boolean;
   /** What it holds in place of the zones, for the file's name. */
-  about?: 'rows' | 'layers' | 'membership';
+  about?: 'rows' | 'vines' | 'layers' | 'membership';
   write: (input: ZoneExport) => Buffer | Promise<Buffer>;
 }
 
@@ -33,6 +36,8 @@ export const exportFormats: readonly ExportFormat[] = [
   { id: 'rowsGeojson', mediaType: 'application/geo+json', extension: 'geojson', about: 'rows', write: (input) => geoJsonOf(rowFeatures(input)) },
   { id: 'rowsShapefile', mediaType: 'application/zip', extension: 'zip', about: 'rows', write: (input) => shapefileOf(rowFeatures(input), input.language) },
   { id: 'rowsKml', mediaType: 'application/vnd.google-earth.kml+xml', extension: 'kml', about: 'rows', write: rowsKml },
+  { id: 'vines', mediaType: 'text/csv; charset=utf-8', extension: 'csv', withMemberships: true, withVines: true, about: 'vines', write: zonesVineTable },
+  { id: 'vinesGeojson', mediaType: 'application/geo+json', extension: 'geojson', withMemberships: true, withVines: true, about: 'vines', write: (input) => geoJsonOf(vineFeatures(input)) },
   { id: 'geotiff', mediaType: 'image/tiff', extension: 'tif', write: zonesGeoTiff },
   { id: 'layers', mediaType: 'image/tiff', extension: 'tif', withLayers: true, about: 'layers', write: zonesLayersGeoTiff },
   { id: 'membership', mediaType: 'image/tiff', extension: 'tif', withMemberships: true, about: 'membership', write: zonesMembershipGeoTiff },

@@ -21,6 +21,8 @@ export interface ZoneExport {
   layers: readonly { name: string; unit: string; cells: Float32Array }[];
   /** On the same cells too; null unless the format asks for them. */
   memberships: MembershipBands | null;
+  /** Empty unless the format asks for them. */
+  vines: readonly ExportedVine[];
 }
 
 export interface ExportedZone {
@@ -42,4 +44,17 @@ export interface ExportedRun {
   zoneName: string;
   /** The stretch of row that belongs to the vines. */
   linesLonLat: readonly (readonly LonLat[])[];
+}
+
+/** A vine by its number in the row, with its zone and how surely the run put the ground there. */
+export interface ExportedVine {
+  rowLabel: string;
+  vine: number;
+  zone: number;
+  zoneName: string;
+  /** Of the zones as the run found and numbered them, 0…1; null where a layer is missing. */
+  membership: { runZone: number; share: number; nextZone: number; certainty: number } | null;
+  /** Counted among the doubtful on screens too. */
+  isDoubtful: boolean;
+  at: LonLat;
 }

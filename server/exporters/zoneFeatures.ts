@@ -42,3 +42,29 @@ export function rowFeatures(input: ZoneExport): FeatureLayer {
     features: input.runs.map(({ rowLabel, fromVine, toVine, zone, zoneName, linesLonLat }) => ({ values: [rowLabel, fromVine, toVine, zone, zoneName], shape: { kind: 'lines', linesLonLat } })),
   };
 }
+
+const thousandths = (share: number) => Math.round(1000 * share) / 1000;
+
+/** Every vine with its zone, the zone that the run gave its ground and how surely: membership there, the next zone, and membership less that of the next. */
+export function vineFeatures(input: Pick<ZoneExport, 'blockName' | 'madeAt' | 'vines'>): FeatureLayer {
+  return {
+    name: 'vines',
+    title: `${input.blockName}: vines by zone`,
+    madeAt: input.madeAt,
+    fields: [
+      { name: 'row', type: 'text' },
+      { name: 'vine', type: 'integer' },
+      { name: 'zone', type: 'integer' },
+      { name: 'zone_name', type: 'text' },
+      { name: 'run_zone', type: 'integer' },
+      { name: 'membership', type: 'real', decimals: 3 },
+      { name: 'next_zone', type: 'integer' },
+      { name: 'certainty', type: 'real', decimals: 3 },
+      { name: 'doubtful', type: 'text' },
+    ],
+    features: input.vines.map(({ rowLabel, vine, zone, zoneName, membership: of, isDoubtful, at }) => ({
+      values: [rowLabel, vine, zone, zoneName, ...(of ? [of.runZone, thousandths(of.share), of.nextZone, thousandths(of.certainty)] : [null, null, null, null]), isDoubtful ? 'yes' : 'no'],
+      shape: { kind: 'point', at },
+    })),
+  };
+}

@@ -3,18 +3,20 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { strFromU8, unzipSync } from 'fflate';
-import type { FeatureCollection, MultiLineString, MultiPolygon, Position } from 'geojson';
+import type { FeatureCollection, MultiLineString, MultiPolygon, Point, Position } from 'geojson';
 import { fromArrayBuffer } from 'geotiff';
 import Papa from 'papaparse';
 import * as shapefiles from 'shpjs';
 import initSqlJs from 'sql.js';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { decodeFloatCells, decodeLabels } from '../../shared/analysis/cellBytes.ts';
+import { cellAt } from '../../shared/analysis/grid.ts';
 import { channels, zoneStyle } from '../../shared/catalog/zoneStyles.ts';
-import { polygonsToUtm } from '../../shared/geo/utm.ts';
+import { vineLabel } from '../../shared/geo/numbering.ts';
+import { polygonsToUtm, toUtm } from '../../shared/geo/utm.ts';
 import { polygonsArea, signedArea } from '../../shared/geo/rings.ts';
 import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
-import type { ZoneOperation, ZoningView } from '../../shared/contracts/zonings.ts';
+import type { ZoneOperation, ZoningDoubt, ZoningView } from '../../shared/contracts/zonings.ts';
 import { exportFormats } from '../../server/exporters/formats.ts';
 import { gridOf } from '../../server/ground/blockVines.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
@@ -129,7 +131,7 @@ function expectRows(read: FeatureCollection<MultiLineString>, [row, from, to, zo
 describe('formats of zones', () => {
   it('are listed for menus', async () => {
     const { body } = await manager.get('/api/formats');
-    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'rowsGeojson', 'rowsShapefile', 'rowsKml', 'geotiff', 'layers', 'membership']);
+    expect(body.items.map((item: { id: string }) => item.id)).toEqual(['geojson', 'shapefile', 'geopackage', 'kml', 'rows', 'rowsGeojson', 'rowsShapefile', 'rowsKml', 'vines', 'vinesGeojson', 'geotiff', 'layers', 'membership']);
     expect((await (await app.browser()).get('/api/formats')).status).toBe(401);
   });
 
@@ -305,14 +307,96 @@ describe('memberships as a raster', () => {
     const read = async (query = '') => manager.get(`${base}/zonings/${zoningId}/memberships${query}`);
     expect((await read()).body).toMatchObject({ changedByHand: true });
     expect((await read('?zones=3')).body).toMatchObject({ changedByHand: false });
+    const told = async (query = '') => ((await manager.get(`${base}/zonings/${zoningId}${query}`)).body as ZoningView).certainty;
+    expect([await told(), await told('?zones=3'), await told('?zones=1')]).toEqual(['kept', 'kept', 'none']);
     expect((await read('?zones=1')).body).toMatchObject({ status: 409, code: 'noMemberships', detail: expect.stringContaining('One zone') as string });
     const kept = await ZoningCandidate.query().findOne({ zoningId, zoneCount: 2 }).throwIfNotFound();
     const { memberships } = kept;
     await kept.$query().patch({ memberships: null });
     expect((await read()).body).toMatchObject({ status: 409, code: 'noMemberships', detail: expect.stringContaining('Run the zoning again') as string });
-    expect((await take('membership')).status).toBe(409);
+    expect(await told()).toBe('older');
+    for (const format of ['membership', 'vines', 'vinesGeojson']) expect((await take(format)).status).toBe(409);
     await kept.$query().patch({ memberships });
     expect((await read()).status).toBe(200);
+  });
+});
+
+describe('the vines with their certainty', () => {
+  interface VineLine { row: string; vine: string; zone: string; zone_name: string; run_zone: string; membership: string; next_zone: string; certainty: string; doubtful: string; longitude: string; latitude: string }
+  const table = async (query = '') => {
+    const text = ((await take('vines', query)).body as Buffer).toString('utf8');
+    expect(text.startsWith('\uFEFFrow,vine,zone,zone_name,run_zone,membership,next_zone,certainty,doubtful,longitude,latitude\r\n')).toBe(true);
+    const { data, errors } = Papa.parse<VineLine>(text.slice(1), { header: true, skipEmptyLines: true });
+    expect(errors).toEqual([]);
+    return data;
+  };
+
+  it('are a line each, with the zone of now beside what the run found where the vine stands', async () => {
+    const lines = await table();
+    const { labels, memberships } = await ZoningCandidate.query().findOne({ zoningId, zoneCount: 2 }).throwIfNotFound();
+    const [zones, shares, grid] = [decodeLabels(labels), decodeLabels(memberships!), gridOf(plot.ground)];
+    expect(lines).toHaveLength(plot.ground.vines.count);
+    expect(new Set(lines.map(({ row, vine }) => `${row} ${vine}`)).size).toBe(lines.length);
+    for (const { number, name, vines } of seen.zones) {
+      const own = lines.filter((line) => line.zone === String(number));
+      expect(own).toHaveLength(vines);
+      expect(own.every((line) => line.zone_name.endsWith(name))).toBe(true);
+    }
+    const { stored, rows, vines: standing, block } = plot.ground;
+    const placeOf = new Map(Array.from(standing.x, (x, at) => [`${stored[standing.row[at]!]!.label} ${vineLabel(rows.rows[standing.row[at]!]!, standing.ordinal[at]!, block.vineOneEnd)}`, [x, standing.y[at]!] as const]));
+    for (const line of lines) {
+      const at = placeOf.get(`${line.row} ${line.vine}`)!;
+      const [x, y] = toUtm([Number(line.longitude), Number(line.latitude)], place.epsg);
+      expect(Math.hypot(x - at[0], y - at[1])).toBeLessThan(0.02);
+      const cell = cellAt(grid, at);
+      if (line.run_zone === '') continue;
+      const [first, second] = [shares[cell]! / 250, shares[zones.length + cell]! / 250];
+      const [own, next] = zones[cell] === 1 ? [first, second] : [second, first];
+      expect([line.run_zone, line.next_zone]).toEqual(zones[cell] === 1 ? ['1', '2'] : ['2', '1']);
+      expect([line.membership, line.certainty]).toEqual([own.toFixed(3), Math.max(0, own - next).toFixed(3)]);
+    }
+    expect(lines.filter((line) => line.run_zone === '').length).toBeLessThan(0.1 * lines.length);
+    // The island given to zone 2 by hand keeps what the run said of it.
+    expect(lines.some((line) => line.zone === '2' && line.run_zone === '1' && Number(line.certainty) > 0.5)).toBe(true);
+  });
+
+  it('calls those doubtful that are counted on the screen, zone by zone', async () => {
+    for (const zones of [2, 3]) {
+      const counted = (await manager.get(`${base}/zonings/${zoningId}/doubt?zones=${zones}`)).body as ZoningDoubt;
+      const lines = await table(`&zones=${zones}`);
+      expect(counted.doubtful).toBeGreaterThan(0);
+      expect(new Set(lines.map(({ doubtful }) => doubtful))).toEqual(new Set(['yes', 'no']));
+      expect(counted.byZone).toEqual([...new Set(lines.map(({ zone }) => Number(zone)))].sort().map((zone) => ({ zone, vines: lines.filter((line) => line.zone === String(zone) && line.doubtful === 'yes').length })).filter(({ vines }) => vines > 0));
+    }
+  });
+
+  it('begin at row 1 and count each row from its vine 1, wherever these are', async () => {
+    const { rowOneSide, vineOneEnd } = await Block.query().findById(plot.blockId).throwIfNotFound();
+    const before = await table();
+    await Block.query().findById(plot.blockId).patch({ rowOneSide: rowOneSide === 'high' ? 'low' : 'high', vineOneEnd: vineOneEnd === 'end' ? 'start' : 'end' });
+    const after = await table();
+    await Block.query().findById(plot.blockId).patch({ rowOneSide, vineOneEnd });
+    const standing = (lines: VineLine[]) => lines.map(({ longitude, latitude, certainty }) => `${longitude} ${latitude} ${certainty}`);
+    expect(standing(after)).toEqual(standing(before).reverse());
+    for (const lines of [before, after]) lines.forEach(({ row, vine }, at) => expect(Number(vine)).toBe(lines[at - 1]?.row === row ? Number(lines[at - 1]!.vine) + 1 : 1));
+  });
+
+  it('are points in GeoJSON with the same columns', async () => {
+    const lines = await table();
+    const { features } = JSON.parse((await bytesOf('vinesGeojson')).toString('utf8')) as FeatureCollection<Point, Record<string, string | number | null>>;
+    expect(features).toHaveLength(lines.length);
+    features.forEach(({ properties, geometry }, at) => {
+      const { longitude, latitude, ...columns } = lines[at]!;
+      expect(Object.keys(properties)).toEqual(Object.keys(columns));
+      expect([properties.row, properties.vine, properties.doubtful, properties.certainty === null ? '' : Number(properties.certainty).toFixed(3)]).toEqual([columns.row, Number(columns.vine), columns.doubtful, columns.certainty]);
+      for (const [axis, degrees] of [longitude, latitude].entries()) expect(Math.abs(geometry.coordinates[axis]! - Number(degrees))).toBeLessThan(1e-7);
+    });
+  });
+
+  it('have decimal commas where the reader’s spreadsheet has', async () => {
+    const answer = await manager.get(`${base}/zonings/${zoningId}/export?format=vines`).set('accept-language', 'fr').buffer(true);
+    expect(answer.text).toMatch(/^\uFEFF?row;vine;zone;/);
+    expect(answer.text).toMatch(/;\d,\d{3};[12];\d,\d{3};(yes|no);/);
   });
 });
 

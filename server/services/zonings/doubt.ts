@@ -16,6 +16,11 @@ import { ownNumber, readLabels } from './view.ts';
 const nothing: ZoningDoubt = { vines: 0, doubtful: 0, byZone: [], runs: [], geometry: null };
 const [clear, doubtful] = [1, 2];
 
+/** Whether a vine in this cell is counted as doubtful; one outside all cells is not. */
+export function isDoubtful(doubt: Float32Array, cell: number): boolean {
+  return cell >= 0 && doubt[cell]! > DOUBTFUL_ABOVE;
+}
+
 /** Where a zoning is in doubt: vines whose layers fit another zone more than half as well as their own, counted and drawn. */
 export async function readDoubt(access: Access, zoningId: string, zoneCount: number | null): Promise<ZoningDoubt> {
   const zoning = await Zoning.query().findOne({ estateId: access.estateId, id: zoningId }).throwIfNotFound();
@@ -28,7 +33,7 @@ export async function readDoubt(access: Access, zoningId: string, zoneCount: num
   const { labels } = await readLabels(access, zoningId, zoneCount);
   const doubt = decodeFloatCells(candidate.doubt);
   const cells = Int32Array.from(ground.vines.x, (x, vine) => cellAt(grid, [x, ground.vines.y[vine]!]));
-  const marks = Uint8Array.from(cells, (cell) => (cell >= 0 && doubt[cell]! > DOUBTFUL_ABOVE ? doubtful : clear));
+  const marks = Uint8Array.from(cells, (cell) => (isDoubtful(doubt, cell) ? doubtful : clear));
   const zoneOf = (vine: number) => (cells[vine]! >= 0 ? (labels[cells[vine]!] ?? 0) : 0);
   const all = [...marks.keys()].filter((vine) => marks[vine] === doubtful && zoneOf(vine) > 0);
   // Single cells are left out of the drawing, not of the count: a hatch of specks cannot be read.

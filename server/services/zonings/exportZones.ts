@@ -17,7 +17,8 @@ import { writeAudit } from '../../models/AuditEntry.ts';
 import { Estate } from '../../models/Estate.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { requireSameOutline } from './editZones.ts';
-import { loadMembershipBands } from './memberships.ts';
+import { vinesForExport } from './exportVines.ts';
+import { loadRunCells } from './memberships.ts';
 import { readLabels, viewZoning } from './view.ts';
 import { say } from '../../sentences/say.ts';
 
@@ -46,10 +47,11 @@ async function exportInput(access: Access, zoningId: string, { zones, language, 
   const { labels } = await readLabels(access, zoningId, view.shown);
   const { cols, rows, cellSizeM, epsg, x0, y0 } = gridOf(ground);
   const exported: ExportedZone[] = view.zones.map(({ number, name, colour, areaM2, vines, missing, geometry }) => ({ number, name, colour, areaM2, vines, missing, polygonsLonLat: geometry.coordinates as unknown as MultiPolygonLonLat }));
+  const run = format.withMemberships ? await loadRunCells(access, zoningId, view.shown) : null;
   return {
     estateName: estate.name, blockName: view.blockName, zoningNumber: view.number, zoningName: view.name, state: view.state, language, madeAt: zoning.createdAt,
     zones: exported, runs: runsOf(ground, exported, labels), cells: { labels, cols, rows, cellSizeM, epsg, x0, y0 }, layers: format.withLayers ? await layerCells(access, view, zoning) : [],
-    memberships: format.withMemberships ? await loadMembershipBands(access, zoningId, view.shown) : null,
+    memberships: run?.bands ?? null, vines: run && format.withVines ? vinesForExport(ground, run, { zones: exported, labels }) : [],
   };
 }
 

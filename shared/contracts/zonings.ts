@@ -125,6 +125,8 @@ export const zoningView = z.object({
   /** Number of zones that `zones` shows. */
   shown: z.number().int(),
   zones: z.array(zoneView),
+  /** Whether it is known how surely cells belong to these zones as the run found them: `none` where it found one, `older` from before that was kept. */
+  certainty: z.enum(['kept', 'none', 'older']),
   problem: z.string().nullable(),
 });
 export type ZoningView = z.infer<typeof zoningView>;

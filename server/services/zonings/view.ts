@@ -122,8 +122,14 @@ export async function viewZoning(access: Access, zoningId: string, shown: number
     beginsWith: kept ? new Set(decodeLabels(zoning.baseLabels!).filter((zone) => zone > 0)).size : null,
     shown: count,
     zones,
+    certainty: certaintyFrom(candidate),
     problem: job?.problem ?? null,
   };
+}
+
+function certaintyFrom(candidate: ZoningCandidate | undefined): ZoningView['certainty'] {
+  if (candidate?.memberships) return 'kept';
+  return candidate && decodeLabels(candidate.labels).some((zone) => zone > 1) ? 'older' : 'none';
 }
 
 /** The number of zones that is meant where nobody names one: those kept, else the number that was fixed for the run, else the advised one. */

@@ -16,11 +16,13 @@ export interface CertaintySubject {
 export function useCertainty(load: (subject: CertaintySubject) => Promise<ZoningMemberships>, { subject, block, zones }: { subject: () => CertaintySubject | null; block: Ref<BlockView | null>; zones: Ref<readonly ZoneView[]> }) {
   const isOn = ref(false);
   const reading = shallowRef<Reading | null>(null);
-  const asking = useAsk(async (of: CertaintySubject) => ({ key: JSON.stringify(of), found: await load(of) }));
+  const asking = useAsk(async (of: CertaintySubject) => ({ of, key: JSON.stringify(of), found: await load(of) }));
   const key = computed(() => JSON.stringify(subject()));
   const picture = computed(() => {
     const asked = asking.data.value;
-    if (!isOn.value || !block.value || asked?.key !== key.value) return null;
+    const of = subject();
+    // After a change by hand the picture stays until the new one has come: what the run found has not changed.
+    if (!isOn.value || !block.value || !asked || asked.of.id !== of?.id || asked.of.zones !== of.zones) return null;
     return certaintyPicture(block.value, asked.found, ownColoursOf(zones.value));
   });
 

@@ -19,7 +19,7 @@ export const mapMargin = 56;
 const buttonMargin = 88;
 
 /** Makes the map in the given element, keeps its colours in step with the theme, and takes it down again. */
-export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null; /** Left free at the foot. */ foot: () => number }) {
+export function useMap(container: Ref<HTMLElement | null>, options: { label: () => string; start: () => Bounds | null; /** Left free at the top and at the foot. */ head: () => number; foot: () => number }) {
   const map = shallowRef<MlMap | null>(null);
   const failed = shallowRef(false);
   const { theme } = useTheme();
@@ -55,14 +55,15 @@ export function useMap(container: Ref<HTMLElement | null>, options: { label: () 
   /** What was last shown whole stays whole when its place changes size, until the person looks elsewhere. */
   function followSize(ready: MlMap): void {
     const letGo = (event: object) => 'isOurs' in event || (shown = null);
-    ready.on('dragstart', letGo);
+    // A movement by hand or by keys has the event that began it.
+    ready.on('movestart', (event) => event.originalEvent && letGo(event));
     ready.on('zoomstart', letGo);
     ready.on('resize', showAgain);
   }
 
   function showBounds(bounds: Bounds, duration: number): void {
     shown = bounds;
-    map.value?.fitBounds(bounds, { padding: { top: mapMargin, left: mapMargin, right: buttonMargin, bottom: options.foot() }, duration }, ours);
+    map.value?.fitBounds(bounds, { padding: { top: options.head(), left: mapMargin, right: buttonMargin, bottom: options.foot() }, duration }, ours);
   }
 
   /** Shows it whole again when its room has changed, unless the person looks elsewhere by now. */

@@ -143,8 +143,15 @@ describe('from a pilot to paper', () => {
     const made = await desk.plan();
     expect(made.choices).toEqual({ ...before.choices, pilotVines: pilotVines / 2 });
     expect([made.zoningNumber, made.state, made.replacedBy]).toEqual([2, 'draft', null]);
-    const after = await desk.ask<PlanView>(`/plans/${pilotId}`);
-    expect(after).toEqual({ ...before, runs: after.runs });
+    expect(await desk.ask<PlanView>(`/plans/${pilotId}`)).toEqual(before);
+    // The plan of another block is refused with a reason, and with a way on.
+    const { items } = await desk.ask<{ items: PlanSummary[] }>('/plans');
+    const stray = items.find(({ blockId }) => blockId !== made.blockId)!;
+    await page.goto(`${app.url}/e/${desk.estateId}/zonings/${made.zoningId}/plan?like=${stray.id}`);
+    await page.getByText(`"${stray.name}" is a plan of ${stray.blockName}; these zones are of Long Furrow.`).waitFor();
+    await page.getByRole('link', { name: 'New plan' }).click();
+    await page.getByRole('button', { name: 'Draw the vines' }).waitFor();
+    await page.getByRole('checkbox', { name: 'Clusters per vine in the plan', checked: true }).waitFor();
   });
 
   it('a plan on the divided zones asks for what the division promised, is drawn and locked', async () => {

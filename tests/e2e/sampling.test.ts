@@ -129,8 +129,10 @@ describe('from a pilot to paper', () => {
   it('the pilot on the zones of before hands on what it asked to a new plan, which can be changed and leaves the old one as it was', async () => {
     const before = await desk.ask<PlanView>(`/plans/${pilotId}`);
     await page.goto(`${app.url}/e/${desk.estateId}/plans/${pilotId}`);
-    await page.getByRole('link', { name: 'New plan on version 2' }).click();
-    await page.getByText(`Taken from plan “${before.name}” of version 1; please check it.`).waitFor();
+    const inForce = before.replacedBy!.number;
+    expect(inForce).toBe(before.zoningNumber + 1);
+    await page.getByRole('link', { name: `New plan on version ${inForce}` }).click();
+    await page.getByText(`Taken from plan “${before.name}” of version ${before.zoningNumber}; please check it.`).waitFor();
     await page.getByRole('checkbox', { name: 'Pruning weight in the plan', checked: true }).waitFor();
     expect(await page.getByRole('checkbox', { name: / in the plan$/, checked: true }).count()).toBe(1);
     expect(await desk.vinesAsked()).toBe(pilotVines);
@@ -142,7 +144,7 @@ describe('from a pilot to paper', () => {
     await page.getByText('Taken from plan').waitFor({ state: 'detached' });
     const made = await desk.plan();
     expect(made.choices).toEqual({ ...before.choices, pilotVines: pilotVines / 2 });
-    expect([made.zoningNumber, made.state, made.replacedBy]).toEqual([2, 'draft', null]);
+    expect([made.zoningNumber, made.state, made.replacedBy]).toEqual([inForce, 'draft', null]);
     expect(await desk.ask<PlanView>(`/plans/${pilotId}`)).toEqual(before);
     // The plan of another block is refused with a reason, and with a way on.
     const { items } = await desk.ask<{ items: PlanSummary[] }>('/plans');

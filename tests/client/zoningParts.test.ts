@@ -9,6 +9,7 @@ import WhyThisMany from '../../src/components/zones/WhyThisMany.vue';
 import ZoningForm from '../../src/components/zones/ZoningForm.vue';
 import ZoningLayers from '../../src/components/zones/ZoningLayers.vue';
 import ZoningVersions from '../../src/components/zones/ZoningVersions.vue';
+import { HttpProblem } from '../../src/lib/httpProblem.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 const layer = (id: string, type: string, measuredOn: string | null) => ({ id, name: id, type, measuredOn, readiness: 'ready', coverage: 1 }) as unknown as BlockLayerView;
@@ -51,6 +52,15 @@ describe('what to zone from', () => {
     const form = await mountWithTexts(ZoningForm, { props: { layers: heights, before } });
     const names = form.findAll('.weight').map((field) => textOf(field.find('label').element));
     expect(names).toEqual(['Weight of h', 'Weight of h, slope']);
+    form.unmount();
+  });
+
+  it('says why it was refused at the button that sent it, where somebody looks', async () => {
+    const problem = new HttpProblem({ status: 422, code: 'no-layer', title: 'Cannot be computed', detail: 'No layer is left.' });
+    const form = await mountWithTexts(ZoningForm, { props: { layers, problem } });
+    const [told, sent] = [form.find('[role=alert]'), form.find('button[type=submit]')];
+    expect(told.text()).toContain('No layer is left.');
+    expect(textOf(told.element.nextElementSibling)).toContain(sent.text());
     form.unmount();
   });
 

@@ -31,6 +31,7 @@ afterAll(async () => {
 
 const read = async <Shape>(page: Page, path: string) => (await (await page.request.get(`${app.url}/api${estatePath.replace('/e/', '/estates/')}${path}`)).json()) as Shape;
 const zoning = (page: Page) => read<ZoningView>(page, `/zonings/${zoningId}`);
+/** A map that is still drawing is asked again: with software drawing that takes seconds on a busy machine. */
 const pictures = async (page: Page) => (await readMap(page, 'zones', 'zone-fill'))?.pictures ?? [];
 const done = (page: Page, words: string | RegExp) => page.locator('ol li').filter({ hasText: words }).first().waitFor();
 
@@ -83,10 +84,10 @@ describe('from layers to zones in force', () => {
     await reading.getByText(/^Zone [12]: [01]\.\d\d\. Next zone [12]: [01]\.\d\d\.$/).waitFor();
     const [own, next] = [...(await reading.innerText()).matchAll(/: ([01]\.\d\d)/g)].map(([, share]) => Number(share));
     expect(own! + next!).toBeCloseTo(1, 1);
-    await expect.poll(() => pictures(page)).toContain('cells-certainty');
+    await expect.poll(() => pictures(page), { timeout: 20_000 }).toContain('cells-certainty');
     await expectAccessible(page);
     await page.getByRole('button', { name: 'Hide certainty on the map' }).click();
-    await expect.poll(() => pictures(page)).toEqual(['relief']);
+    await expect.poll(() => pictures(page), { timeout: 20_000 }).toEqual(['relief']);
     await page.getByRole('button', { name: /Keep two as a draft/ }).click();
     await page.waitForURL(/\/edit$/);
     await context.close();

@@ -550,6 +550,13 @@ describe('the printed report', () => {
     expect(text.replace(/\s+/g, ' ')).toMatch(/averaged on cells of \d+\.\d m and smoothed over \d+\.\d m/);
     for (const zone of seen.zones) expect(text).toContain((zone.areaM2 / 10_000).toFixed(2));
     expect(text).toContain('Ødegård–Šípek');
+    // As much of each zone is doubtful as its ledger says.
+    const doubt = (await manager.get(`${base}/zonings/${zoningId}/doubt`)).body as ZoningDoubt;
+    expect(doubt.doubtful).toBeGreaterThan(0);
+    for (const zone of seen.zones) {
+      const share = (100 * (doubt.byZone.find((entry) => entry.zone === zone.number)?.vines ?? 0)) / zone.vines;
+      expect(text).toContain(`${zone.vines.toLocaleString('fr').replace(/\s/gu, ' ')} ${zone.missing} ${share.toFixed(0)} `);
+    }
   });
 
   it.skipIf(!hasTool('pdftoppm'))('has the map in the zones’ colours, as different in grey as in colour', async () => {

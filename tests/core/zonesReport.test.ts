@@ -13,7 +13,7 @@ import type { MultiPolygonLonLat } from '../../shared/geo/coordinates.ts';
 
 const strip = (west: number): MultiPolygonLonLat => [[[[west, 43], [west + 0.001, 43], [west + 0.001, 43.001], [west, 43.001], [west, 43]]]] as unknown as MultiPolygonLonLat;
 const layer = (layerId: string, over: Partial<ReportLayer> = {}): ReportLayer => ({ layerId, name: layerId, unit: '', decimals: 2, measuredOn: null, isContext: false, isClass: false, weight: 1, advised: 1, override: null, ...over });
-const zone = (number: number, over: Partial<ReportZone> = {}): ReportZone => ({ number, name: '', colour: null, areaM2: 10_000, vines: 100, missing: 3, means: [], polygonsLonLat: strip(3 + number / 1000), ...over });
+const zone = (number: number, over: Partial<ReportZone> = {}): ReportZone => ({ number, name: '', colour: null, areaM2: 10_000, vines: 100, missing: 3, doubtfulShare: 0.17, means: [], polygonsLonLat: strip(3 + number / 1000), ...over });
 const report = (zones: readonly ReportZone[], layers: readonly ReportLayer[]): ZoneReport => ({
   language: 'en', units: 'metric', size: 'A4', today: new Date('2026-07-01'), timeZone: 'UTC', estateName: 'Estate', blockName: 'Long strip', number: 2, name: '', state: 'draft', madeAt: new Date('2026-06-30'),
   verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, shown: 3, warnings: [], reasons: [], numbers: [], layers, differences: [], layerPairs: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
@@ -74,7 +74,22 @@ describe('the printed zones', () => {
   it.skipIf(!hasTool('pdftotext')).each(['en', 'es', 'fr', 'it', 'pt'] as const)('write thousands as screens do, of four digits too, and break no word of a head: %s', async (language) => {
     const text = (await textOf({ ...report([zone(1, { vines: 8858 }), zone(2, { vines: 18_300 })], [layer('Flight')]), language })).replace(/\s/gu, ' ');
     // No word of a head is broken either.
-    expect(text).toContain(reportTexts[language].advised);
+    for (const head of [reportTexts[language].advised, reportTexts[language].doubtful]) expect(text).toContain(head);
     for (const figure of ['8 858', '18 300', '27 158']) expect(text).toContain(figure);
+  });
+
+  it.skipIf(!hasTool('pdftotext'))('tell of each zone how much of it is doubtful, and nothing where one zone has no other', async () => {
+    const zones = [zone(1, { doubtfulShare: 0.174 }), zone(2, { doubtfulShare: null }), zone(3, { doubtfulShare: 0 })];
+    const text = (await textOf(report(zones, [layer('Flight')]))).replace(/\s+/g, ' ');
+    expect(text).toContain('Missing Doubtful, % Flight');
+    expect(text).toMatch(/Zone 1 1\.00 33 100 3 17 – Zone 2 1\.00 33 100 3 – – Zone 3 1\.00 33 100 3 0 – Long strip 3\.00 100 300 9 Doubtful: vines/);
+    for (const alone of [[zone(1)], zones.map((one) => ({ ...one, doubtfulShare: null }))]) expect(await textOf(report(alone, [layer('Flight')]))).not.toContain('Doubtful');
+  });
+
+  it.each(['en', 'es', 'fr', 'it', 'pt'] as const)('leave five zones of one layer with their reasons on one Letter page: %s', async (language) => {
+    const reasons = ['structure', 'plateaus', 'not-tested-on-fruit'].map((code) => ({ code, about: null }));
+    const zones = [1, 2, 3, 4, 5].map((number) => zone(number, { name: number === 3 ? 'Upper terrace, west' : '', means: [{ layerId: 'Flight', mean: 0.5, sd: 0.1 }] }));
+    const bytes = await zonesReport({ ...report(zones, [layer('Flight')]), language, size: 'Letter', reasons, differences: [{ layerId: 'Flight', lowest: 1, highest: 2, withinSd: 0.5, explained: 0.62 }], borders: 'partRow', handEdits: 0 });
+    expect(bytes.toString('latin1').match(/\/Type \/Page\b/gu)).toHaveLength(1);
   });
 });

@@ -19,6 +19,17 @@ export function paragraph(page: Paper, text: string): void {
   page.font('plain').fontSize(9).fillColor(ink).text(text, margin, page.y, { width: innerWidth(page), lineGap: 1.5 });
 }
 
+/** Points that a heading takes with the space around it. */
+const headingHeight = 25;
+
+/** A heading and its paragraph on one page, down to the foot where they just fit. */
+export function section(page: Paper, title: string, text: string): void {
+  const height = page.font('plain').fontSize(9).heightOfString(text, { width: innerWidth(page), lineGap: 1.5 });
+  if (page.y + headingHeight + height > page.page.height - margin) page.addPage();
+  heading(page, title, 0);
+  paragraph(page, text);
+}
+
 export function innerWidth(page: Paper): number {
   return page.page.width - 2 * margin;
 }

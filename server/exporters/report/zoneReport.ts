@@ -75,6 +75,8 @@ export interface ReportZone {
   areaM2: number;
   vines: number;
   missing: number;
+  /** Share of its vines, or of its ground without any, that fits another zone nearly as well; null where that was not kept. */
+  doubtfulShare: number | null;
   means: readonly { layerId: string; mean: number | null; sd: number | null }[];
   polygonsLonLat: MultiPolygonLonLat;
 }

@@ -1,6 +1,6 @@
 import { drawMap, drawSwatch } from './reportMap.ts';
 import type { Paper } from '../paper.ts';
-import { faint, heading, innerWidth, keepRoom, margin, openPage, paragraph, table, type Column } from './reportPage.ts';
+import { faint, heading, innerWidth, margin, openPage, paragraph, section, table, type Column } from './reportPage.ts';
 import { scaleOfAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import { zoneSpan } from '../../../shared/catalog/zoneStyles.ts';
 import { groupBy } from '../../../shared/groupBy.ts';
@@ -148,12 +148,14 @@ function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): v
   const sum = (of: (zone: ReportZone) => number) => report.zones.reduce((all, zone) => all + of(zone), 0);
   const total = sum(({ areaM2 }) => areaM2);
   const layers = report.layers.filter((layer) => layer.weight > 0 && !layer.isClass).slice(0, shownLayers);
+  const hasDoubt = tellsDoubt(report);
   const columns: Column[] = [
-    { head: texts.zone as string, share: 4 },
+    { head: texts.zone as string, share: hasDoubt ? 5 : 4 },
     { head: `${texts.area as string}, ${unit}`, share: 2.4, isFigure: true },
     { head: `${texts.share as string}, %`, share: 2, isFigure: true },
     { head: texts.vines as string, share: 2, isFigure: true },
     { head: texts.missing as string, share: 2.6, isFigure: true },
+    ...(hasDoubt ? [{ head: `${texts.doubtful as string}, %`, share: 2.4, isFigure: true }] : []),
     ...layers.map((layer) => ({ head: layer.unit ? `${layer.name}, ${layer.unit}` : layer.name, share: 3, isFigure: true })),
   ];
   const lines = report.zones.map((zone) => [
@@ -162,11 +164,20 @@ function zoneTable(page: Paper, report: ZoneReport, { texts, figure }: Words): v
     figure((100 * zone.areaM2) / total, 0),
     figure(zone.vines, 0),
     figure(zone.missing, 0),
+    ...(hasDoubt ? [zone.doubtfulShare === null ? '–' : figure(100 * zone.doubtfulShare, 0)] : []),
     ...layers.map((layer) => meanOf(zone.means.find(({ layerId }) => layerId === layer.layerId), layer, figure)),
   ]);
-  const whole = [report.blockName, figure(total / each, 2), figure(100, 0), figure(sum(({ vines }) => vines), 0), figure(sum(({ missing }) => missing), 0), ...layers.map(() => '')];
+  const whole = [report.blockName, figure(total / each, 2), figure(100, 0), figure(sum(({ vines }) => vines), 0), figure(sum(({ missing }) => missing), 0), ...(hasDoubt ? [''] : []), ...layers.map(() => '')];
   heading(page, texts.zones as string);
   table(page, columns, report.zones.length > 1 ? [...lines, whole] : lines, { width: 30, draw: (line, x, y) => line < report.zones.length && drawSwatch(page, { zone: report.zones[line]!, count: zoneSpan(report.zones) }, { x, y: y + 1, width: 22, height: 10 }) });
+  if (!hasDoubt) return;
+  page.moveDown(0.4);
+  paragraph(page, texts.doubtfulMeans as string);
+}
+
+/** One zone has no other that it could fit. */
+function tellsDoubt({ zones }: ZoneReport): boolean {
+  return zones.length > 1 && zones.some(({ doubtfulShare }) => doubtfulShare !== null);
 }
 
 function meanOf(stats: { mean: number | null; sd: number | null } | undefined, layer: ReportLayer, figure: Words['figure']): string {
@@ -202,10 +213,8 @@ function alikeOf({ layerPairs, layers }: ZoneReport, texts: ReportTexts, figure:
 }
 
 function method(page: Paper, report: ZoneReport, { texts, length, patch }: Words): void {
-  keepRoom(page, 70);
-  heading(page, texts.how as string);
   const made = filled(texts.method as string, { cell: length(report.cellSizeM, 1), smoothing: length(report.smoothingM, 1), patch });
-  paragraph(page, [
+  section(page, texts.how as string, [
     made,
     ...(report.standardise === 'robust' ? [texts.robust] : []),
     ...(report.principalComponents ? [texts.components] : []),
@@ -215,10 +224,8 @@ function method(page: Paper, report: ZoneReport, { texts, length, patch }: Words
 }
 
 function limits(page: Paper, report: ZoneReport, { texts, length }: Words): void {
-  keepRoom(page, 70);
-  heading(page, texts.limits as string);
   const tested = report.reasons.some(({ code }) => code.startsWith('fruit-'));
-  paragraph(page, [texts.saysNothing, ...(tested ? [] : [texts.untested]), filled(texts.border as string, { cell: length(report.cellSizeM, 1) }), texts.estimate].join(' '));
+  section(page, texts.limits as string, [texts.saysNothing, ...(tested ? [] : [texts.untested]), filled(texts.border as string, { cell: length(report.cellSizeM, 1) }), texts.estimate].join(' '));
 }
 
 /** The same foot on every page, written when the number of pages is known. */

@@ -1,6 +1,6 @@
 import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
-import type { ZoningView } from '../../../shared/contracts/zonings.ts';
+import type { ZoneView, ZoningDoubt, ZoningView } from '../../../shared/contracts/zonings.ts';
 import type { MultiPolygonLonLat } from '../../../shared/geo/coordinates.ts';
 import type { Access } from '../../access/access.ts';
 import { Clash } from '../../errors.ts';
@@ -15,6 +15,7 @@ import { Estate } from '../../models/Estate.ts';
 import { Person } from '../../models/Person.ts';
 import { ZoneEditRecord } from '../../models/ZoneEditRecord.ts';
 import { Zoning } from '../../models/Zoning.ts';
+import { readDoubt } from './doubt.ts';
 import { requireSameOutline } from './editZones.ts';
 import { viewZoning } from './view.ts';
 import { say } from '../../sentences/say.ts';
@@ -30,6 +31,7 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   ]);
   const ground = await loadBlockVines(access.estateId, view.blockId);
   requireSameOutline(zoning, ground);
+  const doubt = await readDoubt(access, zoningId, asked.zones);
   const { verdict, isJudged, advisedZones, fruitZones, reasons, differences, layerPairs, engineVersion, seed, number, name, state, blockName } = view;
   const language = person.language in reportTexts ? (person.language as ReportLanguage) : 'en';
   const body = await zonesReport({
@@ -39,7 +41,7 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
     shown: view.shown, warnings: warningsOf(view),
     numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
     layers: await layersOf(access, view, reportTexts[language].derived),
-    zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
+    zones: view.zones.map((zone) => ({ number: zone.number, name: zone.name, colour: zone.colour, areaM2: zone.areaM2, vines: zone.vines, missing: zone.missing, doubtfulShare: doubtfulShare(zone, doubt), means: zone.layers, polygonsLonLat: zone.geometry.coordinates as unknown as MultiPolygonLonLat })),
     reasons: reasons.flatMap((reason) => (reason.code === 'stands-out-apart' && view.standsOut ? [reason, { code: 'stands-out-where', about: null }] : [reason])),
     standsOut: (view.standsOut?.coordinates ?? null) as unknown as MultiPolygonLonLat | null,
     boundary: ground.boundary, epsg: ground.block.epsg, cellSizeM: view.cellSizeM,
@@ -50,6 +52,12 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   });
   await writeAudit(Zoning.knex(), access, { action: 'zones.print', subjectType: 'zoning', subjectId: zoningId, subjectName: blockName, after: { size: asked.size } });
   return { name: fileName([blockName, name || `zones ${number}`], 'pdf'), body };
+}
+
+/** As the ledger of zones tells it. */
+function doubtfulShare(zone: ZoneView, doubt: ZoningDoubt): number | null {
+  if (zone.vines === 0) return zone.doubtfulShare;
+  return doubt.vines === 0 ? null : (doubt.byZone.find((entry) => entry.zone === zone.number)?.vines ?? 0) / zone.vines;
 }
 
 /** What a run warned of; of borders and lost zones only for the number that it was made with. That another is shown is said by itself. */

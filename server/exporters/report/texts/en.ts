@@ -23,6 +23,8 @@ export const en = {
   alike: 'The two layers most alike are {one} and {other} (Pearson’s correlation {correlation}; at 1 or −1 they repeat each other, at 0 they have nothing in common).',
   share: 'Share',
   missing: 'Missing',
+  doubtful: 'Doubtful',
+  doubtfulMeans: 'Doubtful: vines, or ground without any, that fit another zone more than half as well (fuzzy c-means, Bezdek 1981).',
   context: 'describes the place only',
   override: '{layer} is used in spite of red findings. {by} answers for it: {reason}',
   limits: 'What this page does not say',

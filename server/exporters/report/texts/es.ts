@@ -23,6 +23,8 @@ export const es = {
   alike: 'Las dos capas más parecidas son {one} y {other} (correlación de Pearson {correlation}; con 1 o −1 se repiten, con 0 no tienen nada en común).',
   share: 'Parte',
   missing: 'Marras',
+  doubtful: 'Dudosa',
+  doubtfulMeans: 'Dudosa: cepas, o terreno sin ellas, que encajan en otra zona más de la mitad de bien (fuzzy c-means, Bezdek 1981).',
   context: 'solo describe el lugar',
   override: '{layer} se usa a pesar de hallazgos rojos. Responde {by}: {reason}',
   limits: 'Lo que esta hoja no dice',

@@ -23,6 +23,8 @@ export const fr = {
   alike: 'Les deux couches les plus proches sont {one} et {other} (corrélation de Pearson {correlation} ; à 1 ou −1 elles se répètent, à 0 elles n’ont rien en commun).',
   share: 'Part',
   missing: 'Manquants',
+  doubtful: 'Douteux',
+  doubtfulMeans: 'Douteux : ceps, ou sol sans ceps, allant plus qu’à moitié aussi bien à une autre zone (fuzzy c-means, Bezdek 1981).',
   context: 'ne décrit que le lieu',
   override: '{layer} est utilisée malgré des constats rouges. {by} en répond : {reason}',
   limits: 'Ce que cette page ne dit pas',

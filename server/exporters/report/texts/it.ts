@@ -23,6 +23,8 @@ export const it = {
   alike: 'I due strati più simili sono {one} e {other} (correlazione di Pearson {correlation}; a 1 o −1 si ripetono, a 0 non hanno nulla in comune).',
   share: 'Quota',
   missing: 'Fallanze',
+  doubtful: 'Dubbia',
+  doubtfulMeans: 'Dubbia: ceppi, o suolo senza ceppi, adatti più che a metà anche a un’altra zona (fuzzy c-means, Bezdek 1981).',
   context: 'descrive solo il luogo',
   override: '{layer} è usato nonostante rilievi rossi. Ne risponde {by}: {reason}',
   limits: 'Ciò che questa pagina non dice',

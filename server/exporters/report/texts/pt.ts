@@ -23,6 +23,8 @@ export const pt = {
   alike: 'As duas camadas mais parecidas são {one} e {other} (correlação de Pearson {correlation}; com 1 ou −1 repetem-se, com 0 nada têm em comum).',
   share: 'Parte',
   missing: 'Falhas',
+  doubtful: 'Duvidosa',
+  doubtfulMeans: 'Duvidosa: cepas, ou terreno sem elas, que se ajustam em mais de metade a outra zona (fuzzy c-means, Bezdek 1981).',
   context: 'só descreve o lugar',
   override: '{layer} é usada apesar de avisos vermelhos. Responde {by}: {reason}',
   limits: 'O que esta folha não diz',

@@ -36,7 +36,8 @@ export function cleanZones(grid: Grid, raw: CellZones, { smallestPatchHa, narrow
   return { labels: relabelled(cleaned, numbers), doubt, fitted };
 }
 
-function doubtWhereMoved(doubt: Cells, before: Labels, after: Labels): void {
+/** Whatever fits a zone best and was put into another is wholly doubtful. */
+export function doubtWhereMoved(doubt: Cells, before: Labels, after: Labels): void {
   for (let cell = 0; cell < doubt.length; cell++) if (after[cell] !== before[cell]) doubt[cell] = 1;
 }
 

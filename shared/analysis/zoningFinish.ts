@@ -18,6 +18,7 @@ import { CUT_PENALTY, snapToRows } from './snapToRows.ts';
 import { adviseZoneCount, type ZoneCountAdvice } from './zoneCount.ts';
 import { NO_MEMBERSHIP } from './zoneMemberships.ts';
 import type { ZoningGround, ZoningParts } from './zoning.ts';
+import { doubtWhereMoved } from './zoningClean.ts';
 import { streamOf, type CellZones } from './zoningFit.ts';
 import { candidateOf, evidenceRows, resultWarnings } from './zoningRecord.ts';
 import { describeZones, zoneCountOf } from './zoningStats.ts';
@@ -25,7 +26,7 @@ import type { BlockPart } from './zoningTogether.ts';
 import type { BlockInput, StageMark, Zone, ZoningOptions, ZoningResult } from './zoningTypes.ts';
 
 /** Changes whenever the same input may give other zones. */
-export const ENGINE_VERSION = '14';
+export const ENGINE_VERSION = '15';
 
 const FRUIT_STREAM = 50;
 
@@ -137,12 +138,14 @@ function layersUsed({ input, prepared }: ZoningGround): ZoningGround['input']['l
   return input.layers.filter(({ id }) => prepared.layers.some((layer) => layer.id === id));
 }
 
-/** A block's zones with their borders along its rows, if that was asked for; doubts stay where they are. */
+/** A block's zones with their borders along its rows, if that was asked for. Cells that the rows put into another zone count as wholly doubtful, as those that clean-up moved. */
 function alongRows({ block: { grid, planting }, zonesOf }: BlockPart, ofAll: CellZones, borders: ZoningOptions['borders']): ZonesAlongRows {
   const zones = zonesOf(ofAll);
   if (borders === 'free' || !planting) return { zones, againstGround: null };
   const { cellLabels, wrongVines } = snapToRows({ grid, labels: zones.labels, ...planting }, { mode: borders, cutPenalty: CUT_PENALTY });
-  return { zones: { ...zones, labels: cellLabels }, againstGround: wrongVines / planting.vines.count };
+  const doubt = zones.doubt.slice();
+  doubtWhereMoved(doubt, zones.labels, cellLabels);
+  return { zones: { labels: cellLabels, doubt }, againstGround: wrongVines / planting.vines.count };
 }
 
 /** The readings of all blocks, with the zone that each lies in; those outside the zones are left out. */

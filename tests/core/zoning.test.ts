@@ -155,6 +155,18 @@ describe('borders of a zoning along the rows', () => {
     expect(makeZoning({ ...plain, planting, options: { ...plain.options, borders: 'partRow' } }).warnings.filter(({ code }) => code === 'rows-against-ground')).toEqual([]);
   });
 
+  it('leave in doubt whatever the rows put into another zone than its layers', () => {
+    const [free, harvester] = (['free', 'wholeRow'] as const).map((borders) => makeZoning({ ...plain, planting, options: { ...plain.options, borders } }).candidates[2]!);
+    const cells = [...free!.labels.keys()].filter((cell) => free!.labels[cell]! > 0);
+    const moved = cells.filter((cell) => harvester!.labels[cell] !== free!.labels[cell]);
+    expect(moved.length / cells.length).toBeGreaterThan(0.2);
+    expect(moved.filter((cell) => harvester!.doubt[cell] !== 1)).toEqual([]);
+    const stayed = cells.filter((cell) => harvester!.labels[cell] === free!.labels[cell]);
+    expect(stayed.filter((cell) => harvester!.doubt[cell] !== free!.doubt[cell])).toEqual([]);
+    const doubtful = (zones: (typeof result.candidates)[number]['zones']) => zones.reduce((sum, { doubtfulShare, areaM2 }) => sum + doubtfulShare * areaM2, 0) / zones.reduce((sum, { areaM2 }) => sum + areaM2, 0);
+    expect(doubtful(harvester!.zones)).toBeGreaterThan(doubtful(free!.zones) + 0.1);
+  });
+
   it('are what fruit is tested on, since those zones are picked', () => {
     const cells = labelVines(fine.grid, fine.truth, planting.vines);
     const random = seededRandom(8);

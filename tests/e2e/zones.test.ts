@@ -73,7 +73,7 @@ describe('from layers to zones in force', () => {
     await page.getByLabel('Compare with').selectOption({ index: 1 });
     await page.getByText(/vines? changes? zone/).first().waitFor();
     await page.getByRole('button', { name: /2 zones/ }).first().click();
-    await page.getByText(/fits? another zone nearly as well/).first().waitFor();
+    await page.getByText(/fits? another zone nearly as well or better/).first().waitFor();
     await page.getByRole('button', { name: 'Show certainty on the map' }).click();
     const reading = page.locator('.estate-map').getByRole('status');
     await reading.getByText(/arrow keys/).waitFor();

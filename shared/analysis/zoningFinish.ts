@@ -85,6 +85,8 @@ export interface ZoneFigures {
   /** For k = 1…6 what each zone is like, without polygons. */
   readonly described: readonly (readonly Zone[])[];
   readonly fruit: FruitCheck;
+  /** Zones of the number chosen that all blocks together have, along the rows where that was asked for. */
+  readonly leftInAll: number;
 }
 
 export function figuresOfZones(ground: ZoningGround, { followed, cleaned, count, chosenK }: ZonesDecided, mark: StageMark = () => {}): ZoneFigures {
@@ -95,9 +97,10 @@ export function figuresOfZones(ground: ZoningGround, { followed, cleaned, count,
   // The zones as drawn in every block, along the rows where that was asked for.
   const tested = (chosenK > 1 ? chosenK : count.best) - 1;
   const zonesIn = (part: BlockPart) => (part === stacked.own ? followed[tested]! : alongRows(part, cleaned[tested]!, options.borders)).zones;
-  const fruit = fruitCheck(stacked.parts.map((part) => ({ block: part.block, zones: zonesIn(part) })), options.seed);
+  const asDrawn = stacked.parts.map((part) => ({ block: part.block, zones: zonesIn(part) }));
+  const fruit = fruitCheck(asDrawn, options.seed);
   mark('fruit', 1);
-  return { described, fruit };
+  return { described, fruit, leftInAll: chosenK > 1 ? zonesAmong(asDrawn.map(({ zones }) => zones.labels)) : 1 };
 }
 
 export interface ZoningEnd {
@@ -106,12 +109,11 @@ export interface ZoningEnd {
   readonly figures: ZoneFigures;
 }
 
-export function zoningRecord(ground: ZoningGround, { made: { table, quality, memberships }, edges, evidence }: ZoningParts, { decided, drawn, figures: { described, fruit } }: ZoningEnd): ZoningResult {
+export function zoningRecord(ground: ZoningGround, { made: { table, quality, memberships }, edges, evidence }: ZoningParts, { decided, drawn, figures: { described, fruit, leftInAll } }: ZoningEnd): ZoningResult {
   const { input, options, stacked, prepared: { layers, warnings }, weights } = ground;
   const { followed, cleaned, verdict, count, isApart, isWorkable, advisedK, chosenK } = decided;
   const numeric = layersUsed(ground).flatMap(({ id, kind }) => (kind === 'number' ? [id] : []));
   const candidates = followed.map(({ zones }, i) => candidateOf(i + 1, { zones, described: described[i]!, drawn: drawn[i]!, numeric, memberships: memberships[i]?.map((band) => stacked.own.planeOf(band, NO_MEMBERSHIP)) ?? null }));
-  const leftInAll = cellsPerLabel(cleaned[chosenK - 1]!.labels).reduce((zones, cells, zone) => zones + Number(zone > 0 && cells > 0), 0);
   return {
     engineVersion: ENGINE_VERSION,
     gridKey: input.grid.key,
@@ -130,8 +132,13 @@ export function zoningRecord(ground: ZoningGround, { made: { table, quality, mem
     evidence: evidenceRows(quality, { curve: evidence.curve, scores: count.scores }, candidates),
     candidates,
     componentShares: table.componentShares,
-    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, leftInAll, advisedK, noneWorkable: !isWorkable && verdict.verdict !== 'one', table, againstGround: followed[chosenK - 1]!.againstGround })],
+    warnings: [...warnings, ...resultWarnings({ chosen: candidates[chosenK - 1]!, leftByCleaning: zonesAmong([cleaned[chosenK - 1]!.labels]), leftInAll, advisedK, noneWorkable: !isWorkable && verdict.verdict !== 'one', table, againstGround: followed[chosenK - 1]!.againstGround })],
   };
+}
+
+/** Zones that these planes have between them. */
+function zonesAmong(planes: readonly Labels[]): number {
+  return new Set(planes.flatMap((labels) => [...cellsPerLabel(labels).entries()].flatMap(([zone, cells]) => (zone > 0 && cells > 0 ? [zone] : [])))).size;
 }
 
 function layersUsed({ input, prepared }: ZoningGround): ZoningGround['input']['layers'] {

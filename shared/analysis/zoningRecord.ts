@@ -48,7 +48,9 @@ const MUCH_AGAINST_GROUND = 0.1;
 
 export interface WarningInput {
   readonly chosen: ZoningCandidate;
-  /** Zones that clean-up left in all blocks together; one may lack some that another has. */
+  /** Zones that clean-up left in all blocks together. */
+  readonly leftByCleaning: number;
+  /** Of these, the zones that are left once borders follow the rows; one block may lack some that another has. */
   readonly leftInAll: number;
   readonly advisedK: number;
   /** More than one zone would be worth it, and no number of them survives clean-up. */
@@ -59,12 +61,13 @@ export interface WarningInput {
 }
 
 /** Things about the result that a person should know before using it. */
-export function resultWarnings({ chosen, leftInAll, advisedK, noneWorkable, table, againstGround }: WarningInput): ZoningWarning[] {
+export function resultWarnings({ chosen, leftByCleaning, leftInAll, advisedK, noneWorkable, table, againstGround }: WarningInput): ZoningWarning[] {
   const warnings: ZoningWarning[] = [];
   const inside = table.cells.length + table.incomplete.length;
   if (table.incomplete.length > 0) warnings.push({ code: 'cells-filled', about: null, figures: { cells: table.incomplete.length, share: table.incomplete.length / inside } });
   if (noneWorkable) warnings.push({ code: 'none-workable', about: null, figures: {} });
-  if (leftInAll < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: leftInAll } });
+  if (leftByCleaning < chosen.k) warnings.push({ code: 'zone-vanished', about: null, figures: { wanted: chosen.k, left: leftByCleaning } });
+  if (leftInAll < leftByCleaning) warnings.push({ code: 'rows-took-zone', about: null, figures: { wanted: leftByCleaning, left: leftInAll } });
   if (chosen.zones.length < leftInAll) warnings.push({ code: 'zone-elsewhere', about: null, figures: { wanted: leftInAll, left: chosen.zones.length } });
   if (chosen.k !== advisedK) warnings.push({ code: 'number-fixed', about: null, figures: { chosen: chosen.k, advised: advisedK } });
   if (againstGround !== null && againstGround > MUCH_AGAINST_GROUND) warnings.push({ code: 'rows-against-ground', about: null, figures: { share: againstGround } });

@@ -144,7 +144,7 @@ export interface ZoneEvidence {
 }
 
 export interface ZoningWarning {
-  readonly code: 'layer-constant' | 'layer-coverage' | 'none-workable' | 'zone-vanished' | 'zone-elsewhere' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
+  readonly code: 'layer-constant' | 'layer-coverage' | 'none-workable' | 'zone-vanished' | 'rows-took-zone' | 'zone-elsewhere' | 'number-fixed' | 'cells-filled' | 'rows-against-ground';
   readonly about: string | null;
   readonly figures: Readonly<Record<string, number>>;
 }

@@ -23,6 +23,12 @@ const other = block(rectangle(1000, 150, 150), [0.7, 0.7, 0.5], 2);
 const options = { zones: 3, seed: 4, drawAll: true };
 const meansOf = (result: ReturnType<typeof makeZoning>) => new Map(result.candidates[2]!.zones.map((zone) => [zone.number, zone.layers[0]!.mean!]));
 
+/** Rows 3 m apart. A bearing of 0 runs along the borders of zones, 90 across them. */
+const planted = (own: BlockInput, rowBearingDeg: number): BlockInput => {
+  const rows = layRows(own.grid.outlineXY, { originXY: own.grid.outlineXY[0]![0]![0]!, gridBearingDeg: rowBearingDeg }, { rowSpacingM: 3, vineSpacingM: 1.5, headlandM: 0 });
+  return { ...own, planting: { rows, vines: vineTable(rows) } };
+};
+
 describe('blocks zoned together', () => {
   const [a, b] = [makeZoning({ ...one, options, together: [other] }), makeZoning({ ...other, options, together: [one] })];
 
@@ -53,11 +59,6 @@ describe('blocks zoned together', () => {
 });
 
 describe('blocks zoned together with borders along the rows', () => {
-  /** Rows 3 m apart. A bearing of 0 runs along the borders of zones, 90 across them. */
-  const planted = (own: BlockInput, rowBearingDeg: number): BlockInput => {
-    const rows = layRows(own.grid.outlineXY, { originXY: own.grid.outlineXY[0]![0]![0]!, gridBearingDeg: rowBearingDeg }, { rowSpacingM: 3, vineSpacingM: 1.5, headlandM: 0 });
-    return { ...own, planting: { rows, vines: vineTable(rows) } };
-  };
   /** Sugar follows the east of the second block, at 60 places. */
   const readings = (grid: Grid) => {
     const random = seededRandom(9);
@@ -137,5 +138,15 @@ describe('a block that lacks a zone that another has', () => {
     expect(codes(here, there)).toContainEqual(['zone-elsewhere', 2]);
     expect(codes(here, there).map(([code]) => code)).not.toContain('zone-vanished');
     expect(codes(there, here).map(([code]) => code)).not.toContain('zone-elsewhere');
+  });
+
+  it('is not told so of zones that its own rows leave nothing of', () => {
+    const across = planted(one, 90);
+    const { warnings, candidates } = makeZoning({ ...across, options: { ...options, borders: 'wholeRow' } });
+    const left = candidates[2]!.zones.length;
+    expect(left).toBeLessThan(3);
+    expect(warnings.map(({ code, figures }) => [code, figures.left])).toContainEqual(['rows-took-zone', left]);
+    expect(warnings.map(({ code }) => code)).not.toContain('zone-elsewhere');
+    expect(makeZoning({ ...planted(one, 0), options: { ...options, borders: 'wholeRow' } }).warnings).toEqual([]);
   });
 });

@@ -66,7 +66,7 @@ function warningsOf({ warnings, shown, options, advisedZones }: ZoningView): Zon
   return warnings.filter(({ code }) => code !== 'number-fixed' && (shown === made || !ofNumber.has(code)));
 }
 
-const ofNumber = new Set(['zone-vanished', 'zone-elsewhere', 'rows-against-ground']);
+const ofNumber = new Set(['zone-vanished', 'rows-took-zone', 'zone-elsewhere', 'rows-against-ground']);
 
 /** Names, numbers and colours leave the ground as it was computed. */
 const harmless = new Set(['rename', 'renumber', 'recolour']);

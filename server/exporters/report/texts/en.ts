@@ -57,7 +57,8 @@ export const en = {
   warning: {
     'layer-constant': '{about} is the same everywhere in the block and was left out.',
     'layer-coverage': '{about} covers {coverage} of the block; the rest was judged without it.',
-    'zone-vanished': '{wanted} zones were made, {left} were left after small patches joined their neighbours.',
+    'zone-vanished': 'Zones left after small patches joined their neighbours: {left} of {wanted}.',
+    'rows-took-zone': 'Zones left once borders follow the rows: {left} of {wanted}.',
     'none-workable': 'No number of zones above one is left once small and narrow parts have joined their neighbours. Allow smaller or narrower parts to see zones.',
     'zone-elsewhere': 'This block has {left} of the {wanted} zones; the others lie in the blocks zoned along.',
     'cells-filled': '{share} of the block lacks a layer there and was judged by the others; it counts as doubtful.',

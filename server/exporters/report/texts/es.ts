@@ -57,7 +57,8 @@ export const es = {
   warning: {
     'layer-constant': '{about} es igual en toda la parcela y se dejó fuera.',
     'layer-coverage': '{about} cubre el {coverage} de la parcela; el resto se juzgó sin ella.',
-    'zone-vanished': 'Se hicieron {wanted} zonas y quedaron {left} al unirse los rodales pequeños a sus vecinos.',
+    'zone-vanished': 'Zonas que quedan tras unirse los rodales pequeños a sus vecinos: {left} de {wanted}.',
+    'rows-took-zone': 'Zonas que quedan con límites a lo largo de las hileras: {left} de {wanted}.',
     'none-workable': 'No queda ningún número de zonas mayor que uno cuando las partes pequeñas y estrechas se unen a sus vecinas. Admita partes menores o más estrechas para ver zonas.',
     'zone-elsewhere': 'Esta parcela tiene {left} de las {wanted} zonas; las demás están en las parcelas zonificadas con ella.',
     'cells-filled': 'En el {share} de la parcela falta una capa y se juzgó por las demás; cuenta como dudoso.',

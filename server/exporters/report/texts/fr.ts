@@ -57,7 +57,8 @@ export const fr = {
   warning: {
     'layer-constant': '{about} est partout pareil dans la parcelle et a été laissé de côté.',
     'layer-coverage': '{about} couvre {coverage} de la parcelle ; le reste a été jugé sans cela.',
-    'zone-vanished': '{wanted} zones ont été faites, {left} sont restées une fois les petites taches jointes à leurs voisines.',
+    'zone-vanished': 'Zones restantes une fois les petites taches jointes à leurs voisines : {left} sur {wanted}.',
+    'rows-took-zone': 'Zones restantes avec des limites le long des rangs : {left} sur {wanted}.',
     'none-workable': 'Aucun nombre de zones supérieur à un ne reste une fois les parties petites et étroites jointes à leurs voisines. Admettez des parties plus petites ou plus étroites pour voir des zones.',
     'zone-elsewhere': 'Cette parcelle a {left} des {wanted} zones ; les autres sont dans les parcelles zonées avec elle.',
     'cells-filled': 'Une couche manque sur {share} de la parcelle, jugée d’après les autres ; cette part compte comme douteuse.',

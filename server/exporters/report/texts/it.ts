@@ -57,7 +57,8 @@ export const it = {
   warning: {
     'layer-constant': '{about} è uguale in tutto l’appezzamento ed è stato lasciato fuori.',
     'layer-coverage': '{about} copre il {coverage} dell’appezzamento; il resto è stato giudicato senza.',
-    'zone-vanished': 'Sono state fatte {wanted} zone, ne sono rimaste {left} dopo l’unione delle piccole macchie alle vicine.',
+    'zone-vanished': 'Zone rimaste dopo l’unione delle piccole macchie alle vicine: {left} su {wanted}.',
+    'rows-took-zone': 'Zone rimaste con confini lungo i filari: {left} su {wanted}.',
     'none-workable': 'Nessun numero di zone superiore a uno resta dopo l’unione delle parti piccole e strette alle vicine. Ammetta parti più piccole o più strette per vedere zone.',
     'zone-elsewhere': 'Questo appezzamento ha {left} delle {wanted} zone; le altre sono negli appezzamenti zonati con esso.',
     'cells-filled': 'Sul {share} dell’appezzamento manca uno strato ed è stato giudicato dagli altri; conta come dubbio.',

@@ -57,7 +57,8 @@ export const pt = {
   warning: {
     'layer-constant': '{about} é igual em toda a parcela e ficou de fora.',
     'layer-coverage': '{about} cobre {coverage} da parcela; o resto foi avaliado sem ela.',
-    'zone-vanished': 'Fizeram-se {wanted} zonas e ficaram {left} depois de as manchas pequenas se juntarem às vizinhas.',
+    'zone-vanished': 'Zonas que ficam depois de as manchas pequenas se juntarem às vizinhas: {left} de {wanted}.',
+    'rows-took-zone': 'Zonas que ficam com limites ao longo dos bardos: {left} de {wanted}.',
     'none-workable': 'Não resta nenhum número de zonas acima de um depois de as partes pequenas e estreitas se juntarem às vizinhas. Admita partes menores ou mais estreitas para ver zonas.',
     'zone-elsewhere': 'Esta parcela tem {left} das {wanted} zonas; as outras estão nas parcelas zonadas com ela.',
     'cells-filled': 'Em {share} da parcela falta uma camada e foi avaliada pelas outras; conta como duvidosa.',

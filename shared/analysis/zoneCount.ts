@@ -27,7 +27,7 @@ export interface ZoneCountAdvice {
 
 const CLOSE_SCORE = 0.1;
 /** Share of the variance on the calm cells that one more zone must be able to add. */
-const LEAST_GAIN = 0.05;
+export const LEAST_GAIN = 0.05;
 /** Fields that all agree would divide by nothing. */
 const LEAST_CHANCE = 1e-6;
 

@@ -35,6 +35,7 @@ export function evidenceRows(quality: readonly FitQuality[], { curve, scores }: 
       ...row,
       gap: gap?.gap ?? null,
       gapSd: gap?.gapSd ?? null,
+      calmWithin: gap?.withinShare ?? null,
       holds: gap?.holds ?? null,
       score: scores.find(({ k }) => k === row.k)?.score ?? null,
       patches: zones.reduce((sum, zone) => sum + zone.patches, 0),

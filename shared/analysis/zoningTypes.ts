@@ -134,6 +134,8 @@ export interface ZoneEvidence {
   /** ln of how much less is left within the zones than in random fields without zones, on the calm cells. */
   readonly gap: number | null;
   readonly gapSd: number | null;
+  /** Share of the variance on the calm cells that is left within the zones. */
+  readonly calmWithin: number | null;
   /** How well the weakest zone comes back when patches of ground are drawn anew, 0…1. */
   readonly holds: number | null;
   /** What the advised number is the highest of. */

@@ -79,6 +79,8 @@ export const evidenceRow = z.object({
   /** How well the weakest zone comes back when ground is drawn anew, 0…1; null for runs of before. */
   holds: z.number().nullable(),
   gap: z.number().nullable(),
+  /** Share of the differences away from borders that is left within the zones; null for runs of before. */
+  calmWithin: z.number().nullable(),
   score: z.number().nullable(),
   patches: z.number().int(),
   smallestZoneHa: z.number(),

@@ -6,7 +6,7 @@ import { createFormat, type Format } from '../../src/lib/format.ts';
 /** Names of sentences with what is put into them, so that a wording may change. */
 const t = (key: string, named: Record<string, unknown> = {}) => (key === 'zones.count' ? `${String(named.n)} zones` : `${key.replace('zones.number.', '')}(${Object.values(named).join(', ')})`);
 const format = { percent: (value: number) => `${Math.round(100 * value)} %`, number: (value: number) => String(value), list: (names: readonly string[]) => names.join(' and ') } as Format;
-const row = (k: number, score: number, holds: number | null, stability = 0.9) => ({ k, score, holds, stability });
+const row = (k: number, score: number, holds: number | null, stability = 0.9, calmWithin: number | null = null) => ({ k, score, holds, stability, calmWithin });
 const words = (advisedZones: number, alsoOffer: number[], evidence: ReturnType<typeof row>[]) => numberWords({ advisedZones, alsoOffer, evidence } as unknown as ZoningView, { t, format });
 
 describe('what is said of other numbers of zones', () => {
@@ -16,6 +16,14 @@ describe('what is said of other numbers of zones', () => {
 
   it('says of one that stands out more and holds that the advised one lies in the middle', () => {
     expect(words(3, [4], [row(2, 9, 0.9), row(3, 9.1, 0.9), row(4, 9.15, 0.88)])).toBe('middle(4 zones, 88 %, 90 %)');
+  });
+
+  it('says of one that stands out more where hardly anything is left to part that enough is parted', () => {
+    const left = (two: number) => [row(2, 2.2, 0.99, 0.99, two), row(3, 2.4, 0.97, 0.96, 0.02), row(4, 2.25, 0.6, 0.95, 0.012)];
+    expect(words(2, [3, 4], left(0.04))).toBe('enough(3 zones, 2 %, 4 %) enough(4 zones, 1 %, 4 %)');
+    expect(words(2, [3, 4], left(0.06))).toBe('middle(3 zones, 97 %, 99 %) unsteady(4 zones, 60 %, 99 %)');
+    // A number below the advised one parts less: what the advised one leaves speaks not against it.
+    expect(words(3, [2], [row(2, 2.5, 0.99, 0.99, 0.06), row(3, 2.4, 0.97, 0.96, 0.02)])).toBe('middle(2 zones, 99 %, 97 %)');
   });
 
   it('names those that are nearly as good, that hold better, or that are found again more surely', () => {

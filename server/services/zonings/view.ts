@@ -25,8 +25,8 @@ import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
 
 /** What `zonings.evidence` holds. */
 interface StoredEvidence {
-  /** Zonings of before have no `holds`. */
-  rows: (Omit<ZoneEvidence, 'holds'> & { holds?: number | null })[];
+  /** Zonings of before have no `holds` or `calmWithin`. */
+  rows: (Omit<ZoneEvidence, 'holds' | 'calmWithin'> & Partial<Pick<ZoneEvidence, 'holds' | 'calmWithin'>>)[];
   advisedWeights: LayerAdvice[];
   weights: { layerId: string; weight: number }[];
   alsoOffer: number[];
@@ -173,7 +173,7 @@ async function evidenceRows(access: Access, rows: StoredEvidence['rows'], ground
     const vines = Math.max(2, Math.round(bearing / row.k));
     const each = measure && measure.marginKind === 'absolute' && measure.spreadKind === 'sd' ? sampleSize({ spread: measure.spreadValue, margin: measure.margin, confidence: measure.confidence, populationSize: vines, minimum: 5 }).n : null;
     const { k, varianceExplained, silhouette, calinskiHarabasz, stability, gap, score, patches, smallestZoneHa } = row;
-    return { k, varianceExplained, silhouette, calinskiHarabasz, stability, holds: row.holds ?? null, gap, score, patches, smallestZoneHa, samples: each === null ? null : each * k, hours: each === null || !measure ? null : (each * k * measure.secondsPerSample) / 3600 };
+    return { k, varianceExplained, silhouette, calinskiHarabasz, stability, holds: row.holds ?? null, gap, calmWithin: row.calmWithin ?? null, score, patches, smallestZoneHa, samples: each === null ? null : each * k, hours: each === null || !measure ? null : (each * k * measure.secondsPerSample) / 3600 };
   });
 }
 

@@ -45,6 +45,7 @@ export const en = {
   number: {
     doubtful: 'The weakest of {zones} comes back only to {share} when ground is drawn anew: walk its borders before you rely on them.',
     unsteady: '{zones} stand out more, but the weakest of them comes back only to {share} when ground is drawn anew.',
+    enough: '{zones} stand out more, but the advised number leaves only {own} of the differences away from borders within its zones: one more would part hardly anything.',
     middle: '{zones} stand out a little more, but hardly beyond chance; the advised number lies in the middle of those that are likely.',
     holds: '{zones} do nearly as well and hold better: the weakest comes back to {share}, against {own}.',
     agrees: '{zones} are found again more surely from half of the cells: {share} against {own}.',

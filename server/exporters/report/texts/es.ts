@@ -45,6 +45,7 @@ export const es = {
   number: {
     doubtful: 'La más débil de {zones} solo vuelve al {share} al sortear de nuevo el terreno: recorra sus límites antes de fiarse.',
     unsteady: '{zones} destacan más, pero la más débil solo vuelve al {share} al sortear de nuevo el terreno.',
+    enough: '{zones} destacan más, pero el número aconsejado solo deja dentro de sus zonas el {own} de las diferencias lejos de los límites: una más apenas separaría nada.',
     middle: '{zones} destacan un poco más, pero apenas más que por azar; el número aconsejado está en medio de los probables.',
     holds: '{zones} quedan casi igual de bien y aguantan mejor: la más débil vuelve al {share}, frente al {own}.',
     agrees: '{zones} se vuelven a encontrar con más seguridad con la mitad de las celdas: {share} frente a {own}.',

@@ -45,6 +45,7 @@ export const fr = {
   number: {
     doubtful: 'La plus faible des {zones} ne revient qu’à {share} quand le terrain est retiré au sort : parcourez ses limites avant de vous y fier.',
     unsteady: '{zones} se détachent davantage, mais la plus faible ne revient qu’à {share} quand le terrain est retiré au sort.',
+    enough: '{zones} se détachent davantage, mais le nombre conseillé ne laisse dans ses zones que {own} des différences loin des limites : une de plus ne séparerait presque rien.',
     middle: '{zones} se détachent un peu plus, mais à peine au-delà du hasard ; le nombre conseillé est au milieu des nombres probables.',
     holds: '{zones} font presque aussi bien et tiennent mieux : la plus faible revient à {share}, contre {own}.',
     agrees: '{zones} se retrouvent plus sûrement avec la moitié des cellules : {share} contre {own}.',

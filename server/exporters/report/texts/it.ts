@@ -45,6 +45,7 @@ export const it = {
   number: {
     doubtful: 'La più debole di {zones} ritorna solo al {share} se il terreno è risorteggiato: ne percorra i confini prima di fidarsene.',
     unsteady: '{zones} risaltano di più, ma la più debole ritorna solo al {share} se il terreno è risorteggiato.',
+    enough: '{zones} risaltano di più, ma il numero consigliato lascia dentro le sue zone solo il {own} delle differenze lontano dai confini: una in più non separerebbe quasi nulla.',
     middle: '{zones} risaltano un poco di più, ma appena oltre il caso; il numero consigliato sta in mezzo a quelli probabili.',
     holds: '{zones} vanno quasi altrettanto bene e reggono meglio: la più debole ritorna al {share}, contro il {own}.',
     agrees: '{zones} si ritrovano con più certezza da metà delle celle: {share} contro {own}.',

@@ -45,6 +45,7 @@ export const pt = {
   number: {
     doubtful: 'A mais fraca de {zones} só volta a {share} quando o terreno é sorteado de novo: percorra os seus limites antes de confiar.',
     unsteady: '{zones} destacam-se mais, mas a mais fraca só volta a {share} quando o terreno é sorteado de novo.',
+    enough: '{zones} destacam-se mais, mas o número aconselhado só deixa dentro das suas zonas {own} das diferenças longe dos limites: mais uma quase nada separaria.',
     middle: '{zones} destacam-se um pouco mais, mas mal para além do acaso; o número aconselhado está no meio dos prováveis.',
     holds: '{zones} ficam quase tão bem e seguram melhor: a mais fraca volta a {share}, contra {own}.',
     agrees: '{zones} reencontram-se com mais segurança com metade das células: {share} contra {own}.',

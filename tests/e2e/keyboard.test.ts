@@ -157,6 +157,25 @@ describe('without a mouse', () => {
     await context.close();
   });
 
+  it('an outline is drawn by touch on a phone, with map and words in one sight, and taken back step by step', async () => {
+    const { page, context, estateId } = await app.signIn('agronomist', { phone: true });
+    await page.goto(`${app.url}/e/${estateId}/blocks/new`);
+    const map = page.locator('.estate-map[data-ready=true] canvas');
+    await map.waitFor();
+    const box = (await map.boundingBox())!;
+    const outline = page.getByRole('heading', { name: 'Outline' });
+    expect(box.y + box.height).toBeLessThan(await outline.evaluate((heading) => heading.getBoundingClientRect().bottom));
+    expect(await outline.evaluate((heading) => heading.getBoundingClientRect().bottom <= innerHeight)).toBe(true);
+    for (const [x, y] of [[0.1, 0.7], [0.3, 0.7], [0.3, 0.9], [0.1, 0.9]] as const) await page.touchscreen.tap(box.x + x * box.width, box.y + y * box.height);
+    await page.getByText('4 corners.').waitFor();
+    await page.getByRole('button', { name: 'One step back' }).tap();
+    await page.getByText('3 corners.').waitFor();
+    await page.touchscreen.tap(box.x + 0.1 * box.width, box.y + 0.7 * box.height);
+    await page.getByRole('button', { name: 'Draw anew' }).waitFor();
+    expect(await page.getByLabel(/^Longitude of corner/).count()).toBe(4);
+    await context.close();
+  });
+
   it('the crew records a vine, the winemaker puts a zone into a new lot, the owner invites and ends an access', async () => {
     const crew = await app.signIn('crew');
     await crew.page.goto(`${app.url}/e/${crew.estateId}/field`);

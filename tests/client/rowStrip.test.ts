@@ -80,7 +80,7 @@ describe('choosing', () => {
   });
 
   it('Shift from vine to vine spans rows and the stretch between', () => {
-    expect(choiceBetween(rows, { rowId: 'r1', vine: 3 }, { rowId: 'r2', vine: 8 })).toEqual({ rowIds: ['r1', 'r2'], fromM: 2, toM: 6 });
+    expect(choiceBetween(rows, { rowId: 'r1', vine: 3 }, { here: { rowId: 'r2', vine: 8 }, move: 'right' })).toEqual({ rowIds: ['r1', 'r2'], fromM: 2, toM: 6 });
   });
 });
 
@@ -122,6 +122,23 @@ describe('row strip', () => {
     // A slip of the finger begins no zone.
     await press('6');
     expect(wrapper.emitted('give')).toHaveLength(1);
+  });
+
+  it('Shift at the last vine, or back to where it began, takes that vine and not the row; only the choice is told', async () => {
+    wrapper = await strip();
+    const told = () => textOf(wrapper.find('[role=status]').element);
+    expect(told()).toBe('');
+    await press('End');
+    await press('ArrowRight', { shiftKey: true });
+    expect(told()).toBe('Row 1, posts 3–4 1 vine, 0 missing');
+    expect(chosenRuns(rows, wrapper.emitted('update:choice')!.at(-1)![0] as StripChoice)).toEqual([{ rowId: 'r1', from: 10, to: 10 }]);
+    await press('ArrowLeft', { shiftKey: true });
+    await press('ArrowRight', { shiftKey: true });
+    expect(chosenRuns(rows, wrapper.emitted('update:choice')!.at(-1)![0] as StripChoice)).toEqual([{ rowId: 'r1', from: 10, to: 10 }]);
+    // Down and up again are whole rows, as before.
+    await press('ArrowDown', { shiftKey: true });
+    await press('ArrowUp', { shiftKey: true });
+    expect(wrapper.emitted('update:choice')!.at(-1)).toEqual([wholeRows(['r1'])]);
   });
 
   it('Space again says from where, and once more to where, as a tap does', async () => {

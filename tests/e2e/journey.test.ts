@@ -81,11 +81,11 @@ describe('from a vigour image to a pick lot', () => {
     await page.getByText('Zone 1', { exact: true }).first().click();
     await page.getByLabel('Name', { exact: true }).fill('Gate bank');
     await page.getByRole('button', { name: 'Name it' }).click();
-    await page.getByText('Named zone 1 Gate bank').waitFor();
+    await page.locator('ol').getByText('Named zone 1 Gate bank').waitFor();
     await page.getByRole('button', { name: 'Undo' }).click();
-    await page.getByText('Undone, can be redone').waitFor();
+    await page.locator('ol').getByText('Undone, can be redone').waitFor();
     await page.getByRole('button', { name: 'Redo' }).click();
-    await page.getByText('Undone, can be redone').waitFor({ state: 'detached' });
+    await page.locator('ol').getByText('Undone, can be redone').waitFor({ state: 'detached' });
     await expectAccessible(page);
     await page.getByRole('button', { name: /Publish version/ }).click();
     await page.waitForURL(/\/zones$/);

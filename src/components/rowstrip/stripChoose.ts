@@ -52,13 +52,14 @@ export function movedVine(rows: readonly StripRow[], here: StripVine, { move, st
   return { rowId: next.id, vine: vineAtM(next, vineM(row, here.vine)) };
 }
 
-/** Choice between two vines reached with Shift: the rows between, and along them the places between when they differ. */
-export function choiceBetween(rows: readonly StripRow[], anchor: StripVine, here: StripVine): StripChoice {
+/** Choice between two vines reached with Shift: the rows between, and along them the places between when they differ. Who moved along a row means vines, be it one. */
+export function choiceBetween(rows: readonly StripRow[], anchor: StripVine, { here, move }: { here: StripVine; move: StripMove }): StripChoice {
   const indexOf = (vine: StripVine) => rows.findIndex((row) => row.id === vine.rowId);
   const rowIds = idsBetween(rows, indexOf(anchor), indexOf(here));
   const [from, to] = [rows[indexOf(anchor)]!, rows[indexOf(here)]!];
   // Straight down the rows the place on the ground is the same, whatever its number there.
-  if (vineAtM(from, vineM(to, here.vine)) === anchor.vine) return wholeRows(rowIds);
+  const isOneVine = rowIds.length === 1 && move !== 'up' && move !== 'down';
+  if (!isOneVine && vineAtM(from, vineM(to, here.vine)) === anchor.vine) return wholeRows(rowIds);
   const edges = [anchor, here].flatMap((vine) => {
     const row = rows[indexOf(vine)]!;
     return [vineEdgeM(row, vine.vine), vineEdgeM(row, vine.vine + 1)];

@@ -32,7 +32,7 @@ export function useStripKeys({ rows, vinesPerPanel, choice, give, undo, redo }: 
     const next = movedVine(rows(), from, { move: to, step: event.ctrlKey ? (vinesPerPanel() ?? 10) : 1 });
     if (event.shiftKey) {
       anchor.value ??= from;
-      choice.value = choiceBetween(rows(), anchor.value, next);
+      choice.value = choiceBetween(rows(), anchor.value, { here: next, move: to });
     } else anchor.value = null;
     at.value = next;
   }

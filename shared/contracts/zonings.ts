@@ -36,6 +36,8 @@ export const zoningLine = z.object({
   number: z.number().int(),
   name: z.string(),
   state: z.enum(zoningStates),
+  /** Name of its season where a later one has begun: zones of several seasons may be in force, each set for its own. */
+  pastSeason: z.string().nullable(),
   /** It failed because somebody stopped it. */
   isStopped: z.boolean(),
   verdict: z.enum(['one', 'test', 'several']).nullable(),
@@ -167,7 +169,11 @@ export const publishRequest = z.object({ reason: z.string().trim().max(400).defa
 
 /** What publishing would touch; a zone that only gets another number is in `renumbered`, and nothing of it counts as moved. */
 export const publishEffects = z.object({
+  /** The season for which they come into force. */
+  season: z.string(),
   replaces: z.number().int().nullable(),
+  /** Zones that another season has in force and that the map shows until now; of a later season they stay there. */
+  shownNow: z.object({ number: z.number().int(), season: z.string(), isLater: z.boolean() }).nullable(),
   readingsMoved: z.number().int(),
   readingsOutside: z.number().int(),
   vinesMoved: z.number().int(),

@@ -4,7 +4,7 @@ import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seededRandom, randomIndex } from '../../shared/analysis/random.ts';
 import { smallestPatchFor } from '../../shared/analysis/smallestPatch.ts';
-import { newZoning, type ZoneOperation, type ZoningDoubt, type ZoningLine, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
+import { newZoning, type PublishEffects, type ZoneOperation, type ZoningDoubt, type ZoningLine, type ZoningPresence, type ZoningSeasons, type ZoningView } from '../../shared/contracts/zonings.ts';
 import { AuditEntry } from '../../server/models/AuditEntry.ts';
 import { BlockLayer } from '../../server/models/BlockLayer.ts';
 import { Job } from '../../server/models/Job.ts';
@@ -701,6 +701,26 @@ describe('publishing', () => {
     const one = await zoned({ zones: 1 });
     expect((await manager.get(`${base()}/zonings/${one}/seasons`)).body.zones).toMatchObject([{ zones: 2, ownZones: 1 }]);
     await Zoning.query().where({ seasonId: season.id }).delete();
+  });
+
+  it('tells zones that another season has in force from those that are replaced', async () => {
+    const next = await draft(2);
+    const live = await Zoning.query().findOne({ estateId: estate.estateId, blockId: plot.blockId, state: 'live' }).throwIfNotFound();
+    const { name: thisSeason } = await Season.query().findById(live.seasonId).throwIfNotFound();
+    const season = await Season.query().insert({ estateId: estate.estateId, name: 'Year before', startsOn: '2024-11-01', endsOn: '2025-10-31', phases: {} });
+    const { id: _copy, ...kept } = await Zoning.query().findById(next).throwIfNotFound();
+    const older = await Zoning.query().insertAndFetch({ ...kept, seasonId: season.id, number: 950, state: 'live', publishedAt: new Date('2025-07-01') } as never);
+    const effects = async () => (await manager.get(`${base()}/zonings/${next}/effects`)).body as PublishEffects;
+    expect(await effects()).toMatchObject({ season: thisSeason, replaces: live.number, shownNow: null });
+    await live.$query().patch({ state: 'retired' });
+    expect(await effects()).toMatchObject({ season: thisSeason, replaces: null, shownNow: { number: 950, season: 'Year before', isLater: false } });
+    await live.$query().patch({ state: 'live' });
+    await Zoning.query().findById(next).patch({ seasonId: season.id });
+    expect(await effects()).toMatchObject({ season: 'Year before', replaces: 950, shownNow: { number: live.number, season: thisSeason, isLater: true } });
+    const lines = (await manager.get(`${base()}/blocks/${plot.blockId}/zonings`)).body.items as ZoningLine[];
+    expect([older.id, live.id].map((id) => lines.find((line) => line.id === id)!).map(({ state, pastSeason }) => [state, pastSeason])).toEqual([['live', 'Year before'], ['live', null]]);
+    await Zoning.query().where({ seasonId: season.id }).delete();
+    await Season.query().deleteById(season.id);
   });
 
   it('tells the second of two editors who else has the zones open and who changed them', async () => {

@@ -5,14 +5,14 @@ import { mountWithTexts, textOf } from './mountWithTexts.ts';
 
 const round = (id: string, done: number) => ({ id, planId: 'plan-1', onDate: '2026-09-05', people: ['Nia Holt'], vines: 33, done });
 const effects: Effects = {
-  replaces: 1, readingsMoved: 0, readingsOutside: 0, vinesMoved: 26, renumbered: [],
+  season: '2026', replaces: 1, shownNow: null, readingsMoved: 0, readingsOutside: 0, vinesMoved: 26, renumbered: [],
   openRounds: [round('round-1', 12), round('round-2', 0)],
   byZone: [{ zone: 1, vines: 2656, sampled: 12, toVisit: 40 }, { zone: 2, vines: 1328, sampled: 0, toVisit: 26 }],
   plans: [{ id: 'plan-1', name: 'Counts', isDraft: false, vines: 33, vinesMoved: 4 }],
   lots: [{ id: 'lot-1', name: 'North', isPicked: false, vinesMoved: 4 }],
   underFloor: [],
 };
-const shown = (given: { mayCallOff: boolean; mayOpen?: boolean; callOff?: string[] }) => mountWithTexts(PublishEffects, { props: { effects, estateId: 'estate-1', mayOpen: () => given.mayOpen ?? true, mayCallOff: given.mayCallOff, callOff: given.callOff ?? [] } });
+const shown = (given: { mayCallOff: boolean; over?: Partial<Effects>; mayOpen?: boolean; callOff?: string[] }) => mountWithTexts(PublishEffects, { props: { effects: { ...effects, ...given.over }, estateId: 'estate-1', mayOpen: () => given.mayOpen ?? true, mayCallOff: given.mayCallOff, callOff: given.callOff ?? [] } });
 
 describe('what publishing would touch', () => {
   it('asks of each round whether it is left or called off', async () => {
@@ -42,6 +42,16 @@ describe('what publishing would touch', () => {
   it('says how far sampling is in the new zones', async () => {
     const list = await shown({ mayCallOff: true });
     expect(list.findAll('tbody tr').map((line) => textOf(line.element))).toEqual([expect.stringMatching(/^Zone 1.*2.656.*12.*40$/), expect.stringMatching(/^Zone 2.*1.328.*0.*26$/)]);
+    list.unmount();
+  });
+
+  it.each([
+    [{ replaces: null, shownNow: null }, 'These become the first zones in force'],
+    [{ replaces: null, shownNow: { number: 3, season: '2025', isLater: false } }, 'These become the first zones of 2026Version 3 stays in force for 2025; the map and new plans go by the new zones.'],
+    [{ season: '2025', replaces: 3, shownNow: { number: 5, season: '2026', isLater: true } }, 'Version 3 is replaced26 vines change zone.They count for 2025 only: the map keeps version 5 of 2026.'],
+  ])('tells zones of another season from those that are replaced: %#', async (over, said) => {
+    const list = await shown({ mayCallOff: false, over });
+    expect(textOf(list.find('li').element)).toBe(said);
     list.unmount();
   });
 });

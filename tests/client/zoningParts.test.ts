@@ -5,9 +5,11 @@ import type { BlockLayerView } from '../../shared/contracts/layers.ts';
 import type { EvidenceRow, ZoningRequestOptions, ZoneView, ZoningLine, ZoningView } from '../../shared/contracts/zonings.ts';
 import FruitTests from '../../src/components/zones/FruitTests.vue';
 import LayerShares from '../../src/components/zones/LayerShares.vue';
+import SeasonAgreement from '../../src/components/zones/SeasonAgreement.vue';
 import WhyThisMany from '../../src/components/zones/WhyThisMany.vue';
 import ZoningForm from '../../src/components/zones/ZoningForm.vue';
 import ZoningLayers from '../../src/components/zones/ZoningLayers.vue';
+import ZoningRuns from '../../src/components/zones/ZoningRuns.vue';
 import ZoningVersions from '../../src/components/zones/ZoningVersions.vue';
 import { HttpProblem } from '../../src/lib/httpProblem.ts';
 import { mountWithTexts, textOf } from './mountWithTexts.ts';
@@ -109,7 +111,7 @@ describe('what each layer adds', () => {
 });
 
 describe('a run beside another', () => {
-  const line = (id: string, number: number) => ({ id, number, name: '', state: 'proposed', createdAt: '2026-06-20T10:00:00Z' }) as unknown as ZoningLine;
+  const line = (id: string, number: number) => ({ id, number, name: '', state: 'proposed', isStopped: false, pastSeason: null, createdAt: '2026-06-20T10:00:00Z' }) as unknown as ZoningLine;
   const view = (id: string, number: number, zones: ZoneView[]) => ({ ...line(id, number), zones }) as unknown as ZoningView;
 
   it('shows the zones that were counted and says how many they are, whatever the page shows since', async () => {
@@ -124,6 +126,39 @@ describe('a run beside another', () => {
     const swatches = page.findAll('tbody th').map((head) => head.html());
     fills(0).forEach((fill, at) => expect(swatches[at]).toContain(fill));
     page.unmount();
+  });
+});
+
+describe('saved runs', () => {
+  const run = (id: string, over: Partial<ZoningLine>) => ({ id, number: 1, name: '', state: 'live', isStopped: false, pastSeason: null, createdBy: null, createdAt: '2026-06-20T10:00:00Z', verdict: null, ...over }) as ZoningLine;
+
+  it('name the season of zones in force that are no more those of today, here and to compare with', async () => {
+    const runs = [run('a', {}), run('b', { pastSeason: '2025' }), run('c', { state: 'draft', pastSeason: '2025' }), run('d', { state: 'failed', isStopped: true })];
+    const table = await mountWithTexts(ZoningRuns, { props: { runs, here: 'a', estateId: 'e', blockId: 'b' } });
+    expect(table.findAll('tbody tr').map((line) => textOf(line.find('.chip').element))).toEqual(['In force', 'In force in 2025', 'Draft', 'Stopped']);
+    table.unmount();
+    const beside = await mountWithTexts(ZoningVersions, { props: { zoning: { ...runs[0], zones: [] } as unknown as ZoningView, others: runs, compared: null } });
+    expect(textOf(beside.find('option[value=b]').element)).toContain('In force in 2025');
+    beside.unmount();
+  });
+});
+
+describe('other seasons', () => {
+  const other = (adjustedRand: number) => ({ zoningId: 'z', number: 1, season: '2025', zones: 3, ownZones: 3, adjustedRand, vinesApart: 694, vines: 11785 });
+  const said = async (adjustedRand: number, shown: number) => {
+    const part = await mountWithTexts(SeasonAgreement, { props: { seasons: { zones: [other(adjustedRand)], layers: [], ground: [] }, shown, ground: null } });
+    const words = textOf(part.find('li').element);
+    part.unmount();
+    return words;
+  };
+
+  it('say with which number the run is compared only where the page shows another', async () => {
+    expect(await said(0.84, 3)).toContain('Compared are 3 zones of this run with 3 zones of that season.');
+    expect(await said(0.84, 4)).toContain('Compared are 3 zones of this run, not the 4 zones shown above, with 3 zones of that season.');
+  });
+
+  it.each([[0.84, 'What was learned of the zones of 2025 largely holds for these.'], [0.5, 'Walk the ground that changes zone before you publish.'], [0.2, 'Little of what was learned then holds for these'], [0, 'Little of what was learned then holds for these']])('say what an agreement of %f is good for', async (adjustedRand, act) => {
+    expect(await said(adjustedRand, 3)).toContain(act);
   });
 });
 

@@ -9,6 +9,7 @@ import type { Access } from '../../access/access.ts';
 import { Clash, Stale } from '../../errors.ts';
 import { loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
 import { zonedReadings } from '../../ground/zonedReadings.ts';
+import { zonesInForce } from '../../ground/zonesInForce.ts';
 import { writeAudit } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { Estate } from '../../models/Estate.ts';
@@ -16,6 +17,7 @@ import { Lot } from '../../models/Lot.ts';
 import { LotPart } from '../../models/LotPart.ts';
 import { LotRowRun } from '../../models/LotRowRun.ts';
 import { Person } from '../../models/Person.ts';
+import { Season } from '../../models/Season.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { lockZoning, requireSameOutline } from './editZones.ts';
 import { plansTouched } from './plansTouched.ts';
@@ -29,13 +31,16 @@ import { say } from '../../sentences/say.ts';
  */
 export async function publishEffects(access: Access, zoningId: string): Promise<PublishEffects> {
   const { zoning, live, ground, before, after } = await loadBoth(access, zoningId);
+  const season = await Season.query().findOne({ estateId: access.estateId, id: zoning.seasonId }).throwIfNotFound();
   const readings = await zonedReadings(access.estateId, { ground, zoneOf: after, seasonId: zoning.seasonId });
   const inBlock = readings.filter((reading) => reading.vine >= 0);
   const isMoved = leavesZone(before, after);
   const { rounds, toVisit } = await roundsUnderWay(access, ground);
   const sampled = [...new Set(inBlock.map(({ vine }) => vine))];
   return {
+    season: season.name,
     replaces: live?.number ?? null,
+    shownNow: await shownNow(access, { zoning, season }),
     readingsMoved: live ? inBlock.filter((reading) => isMoved(reading.vine)).length : 0,
     readingsOutside: readings.filter((reading) => reading.zone === 0).length,
     vinesMoved: live ? [...after.keys()].filter(isMoved).length : 0,
@@ -46,6 +51,14 @@ export async function publishEffects(access: Access, zoningId: string): Promise<
     lots: live ? await lotsTouched(access, { zoning, ground, isMoved }) : [],
     underFloor: await underFloor(access, { after, sampled }),
   };
+}
+
+/** Zones of another season that stand on the map of the block: publishing leaves them in force for their season. */
+async function shownNow({ estateId }: Access, { zoning: { blockId }, season }: { zoning: Zoning; season: Season }): Promise<PublishEffects['shownNow']> {
+  const shown = await zonesInForce(estateId).where({ blockId }).whereNot({ seasonId: season.id }).first();
+  if (!shown) return null;
+  const { name, startsOn } = await Season.query().findOne({ estateId, id: shown.seasonId }).throwIfNotFound();
+  return { number: shown.number, season: name, isLater: startsOn > season.startsOn };
 }
 
 /** Puts the draft in force for its season; the zones that were in force are kept as they were. Whoever has the draft open to edit sees by its revision that it is one no more. */

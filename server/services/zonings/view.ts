@@ -19,9 +19,11 @@ import { Job } from '../../models/Job.ts';
 import { Layer } from '../../models/Layer.ts';
 import { MeasureRecord } from '../../models/MeasureRecord.ts';
 import { Person } from '../../models/Person.ts';
+import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
+import { seasonToday } from './seasonOn.ts';
 
 /** What `zonings.evidence` holds. */
 interface StoredEvidence {
@@ -62,6 +64,9 @@ export async function listZonings(access: Access, blockId: string | null): Promi
 async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
   const people = await Person.query().findByIds([...new Set(rows.flatMap((row) => (row.createdBy ? [row.createdBy] : [])))]).select('id', 'name');
   const jobs = await Job.query().where({ estateId: access.estateId, subjectType: 'zoning' }).whereIn('subjectId', rows.map((row) => row.id)).orderBy('createdAt').select('id', 'subjectId', 'state');
+  const seasons = await Season.query().where({ estateId: access.estateId }).select('id', 'name', 'startsOn');
+  const today = await seasonToday(access.estateId);
+  const seasonOf = (row: Zoning) => seasons.find(({ id }) => id === row.seasonId);
   const jobOf = (row: Zoning) => jobs.findLast((job) => job.subjectId === row.id);
   return rows.map((row) => ({
     id: row.id,
@@ -69,6 +74,7 @@ async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
     number: row.number,
     name: row.name,
     state: row.state,
+    pastSeason: today && seasonOf(row)!.startsOn < today.startsOn ? seasonOf(row)!.name : null,
     isStopped: row.state === 'failed' && jobOf(row)?.state === 'cancelled',
     verdict: (row.verdict as VerdictResult | null)?.verdict ?? null,
     isJudged: (row.verdict as VerdictResult | null)?.isJudged ?? false,

@@ -2,7 +2,7 @@ import { numberNotes } from '../../../shared/analysis/numberNotes.ts';
 import { zoneDifferences } from '../../../shared/analysis/zoningStats.ts';
 import { scaleOfAdvice } from '../../../shared/analysis/layerAdvice.ts';
 import { layerType } from '../../../shared/catalog/layerTypes.ts';
-import type { ZoningView } from '../../../shared/contracts/zonings.ts';
+import type { ZoningLine, ZoningView } from '../../../shared/contracts/zonings.ts';
 import { thinSpace } from '../../../shared/numberText.ts';
 import type { Format } from '../../lib/format.ts';
 
@@ -42,6 +42,12 @@ export function layerName({ name, type }: Pick<Layer, 'name' | 'type'>, t: Trans
   return layerType(type).derived ? `${name}, ${t(`zones.layerType.${type}`)}` : name;
 }
 
+/** In which state a run is; where its zones are in force for a season that is over, for which. */
+export function stateWords({ state, isStopped, pastSeason }: Pick<ZoningLine, 'state' | 'isStopped' | 'pastSeason'>, t: Translate): string {
+  if (state === 'live' && pastSeason !== null) return t('zones.liveIn', { season: pastSeason });
+  return t(`zones.stateOf.${isStopped ? 'stopped' : state}`);
+}
+
 /** What a person should know before using the zones, a sentence each. */
 export function warningWords({ warnings, layers }: Pick<ZoningView, 'warnings' | 'layers'>, { t, format }: { t: Translate; format: Format }): string[] {
   return warnings.map(({ code, about, figures }) => {
@@ -72,6 +78,12 @@ export function agreementWord({ adjustedRand, vinesApart }: { adjustedRand: numb
   if (vinesApart === 0) return 'identical';
   const steps = [[0.9, 'same'], [0.65, 'much'], [0.4, 'partly'], [0.15, 'little']] as const;
   return steps.find(([least]) => adjustedRand >= least)?.[1] ?? 'chance';
+}
+
+/** What to do with the agreement of zones with those of another season. */
+export function agreementAct(compared: Parameters<typeof agreementWord>[0]): 'keep' | 'walk' | 'anew' {
+  const word = agreementWord(compared);
+  return word === 'partly' ? 'walk' : word === 'little' || word === 'chance' ? 'anew' : 'keep';
 }
 
 function nameIn(layers: readonly Layer[], id: string | null, t: Translate): string | undefined {

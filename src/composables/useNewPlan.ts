@@ -2,6 +2,7 @@ import { useI18n } from 'vue-i18n';
 import type { PlanBasis } from '../../shared/contracts/planBasis.ts';
 import { planChoices, type PlanChoices } from '../../shared/contracts/planChoices.ts';
 import type { EarlierPlan } from '../../shared/contracts/plans.ts';
+import { versionName } from '../lib/numberedName.ts';
 import { useSamplingStore } from '../stores/sampling.ts';
 
 export interface NewPlanStart {
@@ -20,7 +21,9 @@ export function useNewPlan(): (estateId: string, zoningId: string, like: string 
   return async (estateId, zoningId, like) => {
     if (like !== null) {
       const from = await store.earlierPlan(estateId, zoningId, like);
-      return { basis: await store.basis(estateId, zoningId, from.choices), choices: from.choices, name: from.name, from };
+      const basis = await store.basis(estateId, zoningId, from.choices);
+      const name = versionName(from.name, basis.zoningNumber, (plan, n) => t('sampling.nameOnVersion', { name: plan, n }));
+      return { basis, choices: from.choices, name, from };
     }
     const basis = await store.basis(estateId, zoningId);
     const { walkingKmPerHour: kmPerHour, setUpSeconds: secondsPerVine } = basis.settings;

@@ -128,9 +128,13 @@ describe('from a pilot to paper', () => {
 
   it('the pilot on the zones of before hands on what it asked to a new plan, which can be changed and leaves the old one as it was', async () => {
     const before = await desk.ask<PlanView>(`/plans/${pilotId}`);
-    await page.goto(`${app.url}/e/${desk.estateId}/plans/${pilotId}`);
     const inForce = before.replacedBy!.number;
     expect(inForce).toBe(before.zoningNumber + 1);
+    // Whoever sends the vines to somebody is told as well as whoever plans them.
+    for (const place of ['', '/targets']) {
+      await page.goto(`${app.url}/e/${desk.estateId}/plans/${pilotId}${place}`);
+      await page.getByText('Its zones were replaced.').waitFor();
+    }
     await page.getByRole('link', { name: `New plan on version ${inForce}` }).click();
     await page.getByText(`Taken from plan “${before.name}” of version ${before.zoningNumber}; please check it.`).waitFor();
     await page.getByRole('checkbox', { name: 'Pruning weight in the plan', checked: true }).waitFor();
@@ -144,6 +148,7 @@ describe('from a pilot to paper', () => {
     await page.getByText('Taken from plan').waitFor({ state: 'detached' });
     const made = await desk.plan();
     expect(made.choices).toEqual({ ...before.choices, pilotVines: pilotVines / 2 });
+    expect(made.name).toBe(`${before.name}, version ${inForce}`);
     expect([made.zoningNumber, made.state, made.replacedBy]).toEqual([inForce, 'draft', null]);
     expect(await desk.ask<PlanView>(`/plans/${pilotId}`)).toEqual(before);
     // The plan of another block is refused with a reason, and with a way on.

@@ -89,6 +89,28 @@ describe.each(themes)('in the %s theme', (theme) => {
   });
 });
 
+it('keeps a name of eighty letters without a space within a phone', async () => {
+  const { page, context, estateId } = await app.signIn('agronomist', { phone: true });
+  const { items } = (await (await page.request.get(`${app.url}/api/estates/${estateId}/blocks`)).json()) as { items: { id: string; name: string }[] };
+  const { id, name } = items.find((block) => block.name === "Tinker's Acre")!;
+  const long = 'W'.repeat(80);
+  await page.route('**/api/estates/**', async (route) => {
+    const response = await route.fetch();
+    if (!response.headers()['content-type']?.includes('json')) return route.fulfill({ response });
+    await route.fulfill({ response, body: (await response.text()).replaceAll(name, long) });
+  });
+  const wide: string[] = [];
+  for (const [place, head] of [[`blocks/${id}`, 'h1'], [`blocks/${id}/zoning`, '.above']] as const) {
+    await page.goto(`${app.url}/e/${estateId}/${place}`);
+    await page.locator(`.page-head ${head}`).filter({ hasText: long }).waitFor();
+    await settle(page);
+    if (await page.evaluate(() => document.documentElement.scrollWidth > innerWidth)) wide.push(place.replace(id, 'block'));
+  }
+  await page.unrouteAll({ behavior: 'ignoreErrors' });
+  await context.close();
+  expect(wide).toEqual([]);
+});
+
 it('keeps every view file reachable from a place', () => {
   const listed = readFileSync(join(import.meta.dirname, '../../src/router/views.ts'), 'utf8');
   const folder = join(import.meta.dirname, '../../src/views');

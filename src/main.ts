@@ -41,10 +41,12 @@ async function start(): Promise<void> {
   if (session.person) await showLanguage(session.person.language);
 
   const router = createAppRouter(session);
-  whenSignedOut(() => {
+  whenSignedOut((untaken) => {
     if (session.person === null) return;
     session.forget();
-    void router.push({ name: 'signIn', query: { to: router.currentRoute.value.fullPath } });
+    const { fullPath, meta } = router.currentRoute.value;
+    // What the field's screens send waits on the phone until it is taken.
+    void router.push({ name: 'signIn', query: { to: fullPath, ...(untaken && meta.frame !== 'field' ? { untaken: '1' } : {}) } });
   });
   app.use(router);
   await router.isReady().catch(() => undefined);

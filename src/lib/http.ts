@@ -11,6 +11,8 @@ export interface RequestOptions {
   readonly ifMatch?: string | number;
   /** Given up after so long, as if there were no signal: on a line that has died a browser waits for minutes. */
   readonly withinMs?: number;
+  /** Sent by the screen itself: nobody misses it when it was not taken. */
+  readonly unasked?: boolean;
 }
 
 export interface Tagged<T> {
@@ -25,7 +27,7 @@ export interface UploadOptions extends RequestOptions {
 type Method = 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE';
 
 let csrfToken = '';
-let onSignedOut: () => void = () => undefined;
+let onSignedOut: (untaken: boolean) => void = () => undefined;
 let onContact: (reached: boolean, serverTime: Date | null) => void = () => undefined;
 
 /** The session says which token writes need; it changes at sign-in. */
@@ -38,8 +40,8 @@ export function currentCsrfToken(): string {
   return csrfToken;
 }
 
-/** Called when the server says that nobody is signed in any more. */
-export function whenSignedOut(handler: () => void): void {
+/** Called when the server says that nobody is signed in any more; `untaken`: in answer to a change, which it did not take. */
+export function whenSignedOut(handler: (untaken: boolean) => void): void {
   onSignedOut = handler;
 }
 
@@ -73,19 +75,23 @@ export const http = {
 async function json<T>(method: Method, path: string, body: unknown, options: RequestOptions = {}): Promise<T> {
   const response = await send(method, path, { options: limited(options), body });
   if (response.status === 204) return undefined as T;
-  return (await readBody(response)) as T;
+  return (await readBody(response, isChange(method, path))) as T;
 }
 
 /** An answer that breaks off, or that a hotel's sign-in page gave in place of the server, is none. */
-async function readBody(response: Response): Promise<unknown> {
+async function readBody(response: Response, sent = false): Promise<unknown> {
   try {
     return await response.json();
   } catch (error) {
     if (error instanceof DOMException && error.name === 'AbortError') throw error;
     onContact(false, null);
-    throw offlineProblem(error);
+    throw offlineProblem(error, { sent });
   }
 }
+
+const doors = ['/api/session', '/api/crew/session'];
+/** Whether a request changes what is kept; signing in and out keeps nothing. */
+const isChange = (method: Method, path: string) => method !== 'GET' && !doors.includes(path);
 
 /** With a signal that ends the request after its time. Not `AbortSignal.timeout`: phones of 2021 lack it. */
 function limited(options: RequestOptions): RequestOptions {
@@ -110,28 +116,30 @@ async function send(method: Method, path: string, { options, body }: Sending, re
     headers: headersOf(method, body, options),
     ...(body === undefined ? {} : { body: JSON.stringify(body) }),
     ...(options.signal ? { signal: options.signal } : {}),
-  });
+  }, isChange(method, path));
   if (response.ok) return response;
   const problem = problemFrom(response.status, await response.json().catch(() => null));
   // A token from before a sign-in in another tab is refused: when the session has a newer one, ask once more.
   if (problem.status === 403 && method !== 'GET' && !retried && (await isTokenRenewed(options))) return send(method, path, { options, body }, true);
-  if (problem.status === 401 && path !== '/api/session' && path !== '/api/crew/session') onSignedOut();
+  if (problem.status === 401 && !doors.includes(path)) onSignedOut(method !== 'GET' && !options.unasked);
   throw problem;
 }
 
-async function reach(address: string, init: RequestInit): Promise<Response> {
+async function reach(address: string, init: RequestInit, sends = false): Promise<Response> {
+  // A device that knows itself to be without a line sends nothing.
+  const sent = sends && navigator.onLine;
   try {
     const response = await fetch(address, init);
     // A gateway that cannot find the server is no contact either.
     const reached = response.status !== 502 && response.status !== 504;
     onContact(reached, reached ? serverTimeOf(response) : null);
-    if (!reached) throw offlineProblem();
+    if (!reached) throw offlineProblem(undefined, { sent });
     return response;
   } catch (error) {
     if (error instanceof DOMException && error.name === 'AbortError') throw error;
     if (error instanceof HttpProblem) throw error;
     onContact(false, null);
-    throw offlineProblem(error);
+    throw offlineProblem(error, { sent });
   }
 }
 
@@ -188,7 +196,7 @@ function upload<T>(path: string, form: FormData, options: UploadOptions = {}): P
       onContact(true, null);
       if (request.status >= 200 && request.status < 300) return resolve(request.response as T);
       const problem = problemFrom(request.status, request.response);
-      if (problem.status === 401) onSignedOut();
+      if (problem.status === 401) onSignedOut(true);
       reject(problem);
     };
     request.onerror = () => {

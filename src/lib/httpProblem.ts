@@ -14,7 +14,7 @@ interface ProblemFacts {
   readonly cause?: unknown;
 }
 
-/** A request that did not end well. Status 0 with code `offline` means that nothing reached the server. */
+/** A request that did not end well. Status 0 with code `offline` means that no answer came. */
 export class HttpProblem extends Error {
   override readonly name = 'HttpProblem';
   readonly status: number;
@@ -37,6 +37,11 @@ export class HttpProblem extends Error {
 
   get isOffline(): boolean {
     return this.status === 0;
+  }
+
+  /** No answer came to something that was sent: the server may have taken it. */
+  get mayHaveArrived(): boolean {
+    return this.isOffline && this.facts.sent === true;
   }
 
   /** Somebody else changed the same thing (409, 412). */
@@ -63,8 +68,9 @@ export function problemFrom(status: number, body: unknown): HttpProblem {
   });
 }
 
-export function offlineProblem(cause?: unknown): HttpProblem {
-  return new HttpProblem({ status: 0, code: 'offline', title: '', detail: '', cause });
+/** `sent`: a change was on its way. */
+export function offlineProblem(cause?: unknown, { sent = false }: { sent?: boolean } = {}): HttpProblem {
+  return new HttpProblem({ status: 0, code: 'offline', title: '', detail: '', facts: { sent }, cause });
 }
 
 function isRecord(value: unknown): value is Record<string, unknown> {

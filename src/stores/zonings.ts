@@ -27,7 +27,7 @@ export const useZoningsStore = defineStore('zonings', () => {
   const doubt = (estateId: string, zoningId: string, zones: number | null = null) => http.get<ZoningDoubt>(`${base(estateId)}/zonings/${zoningId}/doubt`, { query: { zones } });
   const memberships = (estateId: string, { id, zones }: { id: string; zones: number | null }) => http.get<ZoningMemberships>(`${base(estateId)}/zonings/${id}/memberships`, { query: { zones } });
   const seasons = (estateId: string, zoningId: string) => http.get<ZoningSeasons>(`${base(estateId)}/zonings/${zoningId}/seasons`);
-  const presence = (estateId: string, zoningId: string) => http.post<ZoningPresence>(`${base(estateId)}/zonings/${zoningId}/presence`);
+  const presence = (estateId: string, zoningId: string) => http.post<ZoningPresence>(`${base(estateId)}/zonings/${zoningId}/presence`, undefined, { unasked: true });
   const labels = async (estateId: string, zoningId: string) => new Uint8Array(await http.getBytes(`${base(estateId)}/zonings/${zoningId}/labels`));
   const exportFile = (estateId: string, zoning: { id: string; fileName: string; zones: number | null }, format: string) => http.download(`${base(estateId)}/zonings/${zoning.id}/export?format=${format}${zoning.zones === null ? '' : `&zones=${zoning.zones}`}`, zoning.fileName);
   const report = (estateId: string, zoning: { id: string; fileName: string; zones: number | null }, size: string) => http.download(`${base(estateId)}/zonings/${zoning.id}/report?size=${size}${zoning.zones === null ? '' : `&zones=${zoning.zones}`}`, zoning.fileName);

@@ -168,6 +168,9 @@ describe('problem note', () => {
   it('says common problems in the reader\'s language', async () => {
     wrapper = await mountWithTexts(ProblemNote, { language: 'es', props: { problem: offlineProblem() } });
     expect(textOf(wrapper.find('h3').element)).toBe('Sin cobertura');
+    expect(wrapper.text()).toContain('No se ha cambiado nada');
+    await wrapper.setProps({ problem: offlineProblem(undefined, { sent: true }) });
+    expect(wrapper.text()).toContain('no se sabe si esto llegó');
   });
 });
 

@@ -19,7 +19,7 @@ const zoningOf = (certainty: ZoningView['certainty'], { zones = 2, revision = 1 
 /** The map cannot be drawn here; what it is given can be seen. */
 const Drawn = defineComponent({ inheritAttrs: false, props: ['zones', 'rasters', 'withPills', 'doubt', 'drawing'], setup: (_, { slots }) => () => h('div', slots.default?.()) });
 async function open(zoning: ZoningView, memberships = vi.fn(() => Promise.resolve(answer(false)))) {
-  const page = await mountWithTexts(EditedZonesMap, { props: { block, zoning, doubt: { vines: 9, doubtful: 3, byZone: [], runs: [], geometry: boundary as never }, relief: null, memberships, chosen: null, pen: null }, global: { stubs: { EstateMap: Drawn } } });
+  const page = await mountWithTexts(EditedZonesMap, { props: { block, zoning, doubt: { vines: 9, doubtful: 3, byZone: [], runs: [], geometry: boundary as never }, relief: null, memberships, chosen: null, pen: null, corners: [] }, global: { stubs: { EstateMap: Drawn } } });
   const map = () => page.findComponent(Drawn).props() as { zones: unknown[]; rasters: unknown[]; withPills: boolean; doubt: unknown };
   const toggle = () => page.findAll('button').find((button) => /certainty on the map/.test(button.text()));
   return { page, map, toggle, memberships };

@@ -1,6 +1,6 @@
 import { createServer, type IncomingMessage, type Server, type ServerResponse } from 'node:http';
 import type { AddressInfo } from 'node:net';
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, beforeEach, describe, expect, it, vi } from 'vitest';
 import { fileNameFrom, http, setCsrfToken, whenContacted, whenSignedOut } from '../../src/lib/http.ts';
 import { HttpProblem } from '../../src/lib/httpProblem.ts';
 
@@ -117,13 +117,16 @@ describe('http', () => {
     expect(asked).toHaveLength(2);
   });
 
-  it('a session that ended is told once, a failed sign-in is not', async () => {
-    let told = 0;
-    whenSignedOut(() => told++);
+  it('a session that ended is told once, with what it did not take; a failed sign-in is not', async () => {
+    const told: boolean[] = [];
+    whenSignedOut((untaken) => told.push(untaken));
     answer = (_request, response) => reply(response, 401, { code: 'notSignedIn', title: 'Not signed in', detail: '', status: 401 });
     await problemOf(http.get('/api/estates/1/blocks'));
     await problemOf(http.post('/api/session', { email: 'a', password: 'b' }));
-    expect(told).toBe(1);
+    expect(told).toEqual([false]);
+    await problemOf(http.post('/api/estates/1/blocks', {}));
+    await problemOf(http.post('/api/estates/1/zonings/2/presence', undefined, { unasked: true }));
+    expect(told).toEqual([false, true, false]);
   });
 
   it('no server at all is offline, and so is a gateway without one', async () => {
@@ -137,6 +140,20 @@ describe('http', () => {
     await http.get('/api/health');
     expect(contacts).toContain(false);
     expect(contacts.at(-1)).toBe(true);
+  });
+
+  it('a change without an answer may have arrived, unless the device knows that it has no line; a look and a sign-in change nothing', async () => {
+    answer = (_request, response) => void response.destroy();
+    const arrived = async (asked: Promise<unknown>) => (await problemOf(asked)).mayHaveArrived;
+    expect(await arrived(http.post('/api/estates/1/blocks', {}))).toBe(true);
+    expect(await arrived(http.get('/api/estates/1/blocks'))).toBe(false);
+    expect(await arrived(http.post('/api/session', {}))).toBe(false);
+    answer = (_request, response) => void response.writeHead(200).end('<p>Welcome to the hotel</p>');
+    expect(await arrived(http.patch('/api/estates/1/blocks/2', {}))).toBe(true);
+    answer = (_request, response) => void response.destroy();
+    vi.stubGlobal('navigator', { onLine: false });
+    expect(await arrived(http.post('/api/estates/1/blocks', {}))).toBe(false);
+    vi.unstubAllGlobals();
   });
 
   it('nothing comes back from an empty answer', async () => {

@@ -177,6 +177,30 @@ describe('from layers to zones in force', () => {
     await context.close();
   });
 
+  it('keeps what is drawn, and why, while its person has to sign in again', async () => {
+    const { page, context } = await app.signIn('manager');
+    const editor = `${app.url}${estatePath}/zonings/${zoningId}/edit`;
+    await page.goto(editor);
+    await page.getByRole('table', { name: 'Zones of the block' }).locator('tbody tr').first().click();
+    await page.getByRole('button', { name: 'Split by a line' }).click();
+    const [west, south, east] = boxOf(await zoning(page), 1);
+    await giveCorners(page, [[west, south], [east, south]]);
+    await page.getByLabel('Reason for the next edit').fill('Two soils');
+    const corner = await page.getByLabel('Longitude of corner 2').inputValue();
+    expect(Number(corner)).toBeCloseTo(east, 6);
+    await context.clearCookies();
+    await page.getByRole('button', { name: /^Split zone 1 here$/ }).click();
+    await page.getByText('What you sent last was not taken', { exact: false }).waitFor();
+    await page.getByLabel('E-mail').fill('manager@demo.example');
+    await page.locator('input[type=password]').fill('patchrow-demo');
+    await page.locator('form button[type=submit]').click();
+    await page.waitForURL(editor);
+    await page.getByRole('heading', { name: 'Split zone 1' }).waitFor();
+    expect(await page.getByLabel('Longitude of corner 2').inputValue()).toBe(corner);
+    expect(await page.getByLabel('Reason for the next edit').inputValue()).toBe('Two soils');
+    await context.close();
+  });
+
   it('tells the second of two editors, overwrites nothing, and publishes with its effects shown', async () => {
     const [one, two] = await Promise.all([app.signIn('manager'), app.signIn('agronomist')]);
     for (const { page } of [one, two]) {

@@ -48,6 +48,12 @@ export function stateWords({ state, isStopped, pastSeason }: Pick<ZoningLine, 's
   return t(`zones.stateOf.${isStopped ? 'stopped' : state}`);
 }
 
+/** What a draft began with, before anybody changed it by hand. */
+export function startWords({ takenUpFrom, beginsByHand, beginsWith }: Pick<ZoningView, 'takenUpFrom' | 'beginsByHand' | 'beginsWith'>, t: Translate): string {
+  if (takenUpFrom === null) return t('zones.editor.start', { n: beginsWith ?? 1 }, beginsWith ?? 1);
+  return t(beginsByHand ? 'zones.editor.startByHand' : 'zones.editor.startTaken', { n: takenUpFrom });
+}
+
 /** What a person should know before using the zones, a sentence each. */
 export function warningWords({ warnings, layers }: Pick<ZoningView, 'warnings' | 'layers'>, { t, format }: { t: Translate; format: Format }): string[] {
   return warnings.map(({ code, about, figures }) => {

@@ -15,7 +15,7 @@ const strip = (west: number): MultiPolygonLonLat => [[[[west, 43], [west + 0.001
 const layer = (layerId: string, over: Partial<ReportLayer> = {}): ReportLayer => ({ layerId, name: layerId, unit: '', decimals: 2, measuredOn: null, isContext: false, isClass: false, weight: 1, advised: 1, override: null, ...over });
 const zone = (number: number, over: Partial<ReportZone> = {}): ReportZone => ({ number, name: '', colour: null, areaM2: 10_000, vines: 100, missing: 3, doubtfulShare: 0.17, means: [], polygonsLonLat: strip(3 + number / 1000), ...over });
 const report = (zones: readonly ReportZone[], layers: readonly ReportLayer[]): ZoneReport => ({
-  language: 'en', units: 'metric', size: 'A4', today: new Date('2026-07-01'), timeZone: 'UTC', estateName: 'Estate', blockName: 'Long strip', number: 2, name: '', state: 'draft', madeAt: new Date('2026-06-30'),
+  language: 'en', units: 'metric', size: 'A4', today: new Date('2026-07-01'), timeZone: 'UTC', estateName: 'Estate', blockName: 'Long strip', number: 2, name: '', state: 'draft', pastSeason: null, madeAt: new Date('2026-06-30'),
   verdict: 'several', isJudged: true, advisedZones: 3, fruitZones: null, shown: 3, warnings: [], reasons: [], numbers: [], layers, differences: [], layerPairs: [], zones, boundary: zones.flatMap(({ polygonsLonLat }) => polygonsLonLat), standsOut: null, epsg: 32631, cellSizeM: 2,
   engineVersion: '1', seed: 1, smoothingM: 3, smallestPatchHa: 0.05, borders: 'free', standardise: 'plain', principalComponents: false, together: [], handEdits: 1, beginsByHand: false,
 });
@@ -53,6 +53,12 @@ describe('the printed zones', () => {
     const [low, high] = [1, 3].map((number) => zoneStyle(number, { count: 3 }).fill);
     expect(fills(operators, high!)).toBe(2);
     expect(fills(operators, low!)).toBe(2);
+  });
+
+  it.skipIf(!hasTool('pdftotext'))('name the season of zones in force that is over', async () => {
+    const inForce = (pastSeason: string | null) => textOf({ ...report([zone(1), zone(2)], [layer('Flight')]), state: 'live', pastSeason });
+    expect(await inForce('2025')).toContain('Zoning 2: in force in 2025, made on');
+    expect(await inForce(null)).toContain('Zoning 2: in force, made on');
   });
 
   it.skipIf(!hasTool('pdftotext'))('say that other zones are shown than those advised, what was warned of, and the ground of the whole', async () => {

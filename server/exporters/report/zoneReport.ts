@@ -15,6 +15,8 @@ export interface ZoneReport {
   number: number;
   name: string;
   state: string;
+  /** Season for which they are in force, where a later one has begun. */
+  pastSeason: string | null;
   madeAt: Date;
   verdict: 'one' | 'test' | 'several' | null;
   isJudged: boolean;

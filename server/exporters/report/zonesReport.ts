@@ -40,7 +40,7 @@ function composed(report: ZoneReport, words: Words, mapHeight: number): Paper {
   const title = filled(words.texts.title as string, { block: report.blockName });
   const page = openPage({ size: report.size, title, at: report.today });
   page.font('bold').fontSize(20).text(title, margin, margin);
-  page.font('plain').fontSize(9).fillColor(faint).text(filled(words.texts.line as string, { estate: report.estateName, number: report.number, name: report.name ? ` “${report.name}”` : '', state: stateOf(report, words).toLowerCase(), day: words.day(report.madeAt) }));
+  page.font('plain').fontSize(9).fillColor(faint).text(filled(words.texts.line as string, { estate: report.estateName, number: report.number, name: report.name ? ` “${report.name}”` : '', state: stateOf(report, words), day: words.day(report.madeAt) }));
   page.moveDown(0.8);
   const verdict = verdictOf(report, words.texts);
   if (verdict) page.font('bold').fontSize(14).fillColor('#1C2B33').text(verdict);
@@ -82,8 +82,9 @@ function wordsOf({ language: spoken, units, timeZone, smallestPatchHa }: ZoneRep
   };
 }
 
-function stateOf({ state }: ZoneReport, { texts }: Words): string {
-  return texts.stateOf[state] ?? state;
+function stateOf({ state, pastSeason }: ZoneReport, { texts }: Words): string {
+  if (state === 'live' && pastSeason !== null) return filled(texts.liveIn as string, { season: pastSeason });
+  return (texts.stateOf[state] ?? state).toLowerCase();
 }
 
 function verdictOf({ verdict, isJudged, advisedZones }: ZoneReport, texts: ReportTexts): string | null {

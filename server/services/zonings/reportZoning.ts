@@ -32,12 +32,12 @@ export async function reportZoning(access: Access, zoningId: string, asked: { si
   const ground = await loadBlockVines(access.estateId, view.blockId);
   requireSameOutline(zoning, ground);
   const doubt = await readDoubt(access, zoningId, asked.zones);
-  const { verdict, isJudged, advisedZones, fruitZones, reasons, differences, layerPairs, engineVersion, seed, number, name, state, blockName } = view;
+  const { verdict, isJudged, advisedZones, fruitZones, reasons, differences, layerPairs, engineVersion, seed, number, name, state, pastSeason, blockName } = view;
   const language = person.language in reportTexts ? (person.language as ReportLanguage) : 'en';
   const body = await zonesReport({
     language,
     units: person.units, size: asked.size, today: asked.now, timeZone: estate.timeZone, estateName: estate.name,
-    blockName, number, name, state, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, fruitZones, differences, layerPairs, engineVersion, seed,
+    blockName, number, name, state, pastSeason, madeAt: zoning.createdAt, verdict, isJudged, advisedZones, fruitZones, differences, layerPairs, engineVersion, seed,
     shown: view.shown, warnings: warningsOf(view),
     numbers: numberNotes(advisedZones, view.alsoOffer, view.evidence),
     layers: await layersOf(access, view, reportTexts[language].derived),

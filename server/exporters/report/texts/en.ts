@@ -54,6 +54,7 @@ export const en = {
   inWords: ['one', 'two', 'three', 'four', 'five', 'six'],
   verdict: { one: 'Treat as one.', test: 'Worth testing as {zones} zones.', testOne: 'Worth testing as one zone.', several: 'Worth zoning into {zones}.', severalOne: 'Worth zoning, but no zones are left within the limits you set.', notJudged: 'The layers alone cannot tell.' },
   stateOf: { running: 'Running', proposed: 'Proposed', draft: 'Draft', live: 'In force', retired: 'Earlier', failed: 'Failed' },
+  liveIn: 'in force in {season}',
   shownOther: 'Number of zones shown here: {shown}; advised: {advised}.',
   warning: {
     'layer-constant': '{about} is the same everywhere in the block and was left out.',

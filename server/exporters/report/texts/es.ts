@@ -54,6 +54,7 @@ export const es = {
   inWords: ['una', 'dos', 'tres', 'cuatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como una.', test: 'Merece probarse como {zones} zonas.', testOne: 'Merece probarse como una zona.', several: 'Merece dividirse en {zones} zonas.', severalOne: 'Merece dividirse, pero con los límites fijados no queda ninguna división.', notJudged: 'Las capas solas no bastan.' },
   stateOf: { running: 'Calculando', proposed: 'Propuesta', draft: 'Borrador', live: 'En vigor', retired: 'Anterior', failed: 'Fallido' },
+  liveIn: 'en vigor en {season}',
   shownOther: 'Número de zonas que se muestra aquí: {shown}; aconsejado: {advised}.',
   warning: {
     'layer-constant': '{about} es igual en toda la parcela y se dejó fuera.',

@@ -54,6 +54,7 @@ export const fr = {
   inWords: ['une', 'deux', 'trois', 'quatre', 'cinq', 'six'],
   verdict: { one: 'À traiter comme une seule.', test: 'À essayer comme {zones} zones.', testOne: 'À essayer comme une zone.', several: 'À diviser en {zones} zones.', severalOne: 'À diviser, mais les limites fixées ne laissent aucune division.', notJudged: 'Les couches seules ne peuvent le dire.' },
   stateOf: { running: 'En cours', proposed: 'Proposé', draft: 'Brouillon', live: 'En vigueur', retired: 'Antérieur', failed: 'Échoué' },
+  liveIn: 'en vigueur en {season}',
   shownOther: 'Nombre de zones montré ici : {shown} ; conseillé : {advised}.',
   warning: {
     'layer-constant': '{about} est partout pareil dans la parcelle et a été laissé de côté.',

@@ -54,6 +54,7 @@ export const it = {
   inWords: ['una', 'due', 'tre', 'quattro', 'cinque', 'sei'],
   verdict: { one: 'Trattare come una sola.', test: 'Vale la pena provare come {zones} zone.', testOne: 'Vale la pena provare come una zona.', several: 'Vale la divisione in {zones} zone.', severalOne: 'Vale la divisione, ma entro i limiti fissati non ne resta nessuna.', notJudged: 'Gli strati da soli non bastano.' },
   stateOf: { running: 'In corso', proposed: 'Proposta', draft: 'Bozza', live: 'In vigore', retired: 'Precedente', failed: 'Fallito' },
+  liveIn: 'in vigore nel {season}',
   shownOther: 'Numero di zone mostrato qui: {shown}; consigliato: {advised}.',
   warning: {
     'layer-constant': '{about} è uguale in tutto l’appezzamento ed è stato lasciato fuori.',

@@ -54,6 +54,7 @@ export const pt = {
   inWords: ['uma', 'duas', 'três', 'quatro', 'cinco', 'seis'],
   verdict: { one: 'Tratar como uma só.', test: 'Vale a pena experimentar como {zones} zonas.', testOne: 'Vale a pena experimentar como uma zona.', several: 'Merece dividir-se em {zones} zonas.', severalOne: 'Merece dividir-se, mas dentro dos limites dados não resta nenhuma divisão.', notJudged: 'As camadas sozinhas não chegam.' },
   stateOf: { running: 'A calcular', proposed: 'Proposta', draft: 'Rascunho', live: 'Em vigor', retired: 'Anterior', failed: 'Falhou' },
+  liveIn: 'em vigor em {season}',
   shownOther: 'Número de zonas mostrado aqui: {shown}; aconselhado: {advised}.',
   warning: {
     'layer-constant': '{about} é igual em toda a parcela e ficou de fora.',

@@ -1,4 +1,5 @@
 import { offlineProblem, problemFrom, HttpProblem } from './httpProblem.ts';
+import { withinTime } from './withinTime.ts';
 
 /** The only door to the server: cookie session, CSRF header on writes, refusals in the language of the page, problem+json turned into HttpProblem. */
 
@@ -73,7 +74,7 @@ export const http = {
 };
 
 async function json<T>(method: Method, path: string, body: unknown, options: RequestOptions = {}): Promise<T> {
-  const response = await send(method, path, { options: limited(options), body });
+  const response = await send(method, path, { options: withinTime(options), body });
   if (response.status === 204) return undefined as T;
   return (await readBody(response, isChange(method, path))) as T;
 }
@@ -92,15 +93,6 @@ async function readBody(response: Response, sent = false): Promise<unknown> {
 const doors = ['/api/session', '/api/crew/session'];
 /** Whether a request changes what is kept; signing in and out keeps nothing. */
 const isChange = (method: Method, path: string) => method !== 'GET' && !doors.includes(path);
-
-/** With a signal that ends the request after its time. Not `AbortSignal.timeout`: phones of 2021 lack it. */
-function limited(options: RequestOptions): RequestOptions {
-  if (options.withinMs === undefined) return options;
-  const giveUp = new AbortController();
-  setTimeout(() => giveUp.abort(new DOMException('No answer in time.', 'TimeoutError')), options.withinMs);
-  options.signal?.addEventListener('abort', () => giveUp.abort());
-  return { ...options, signal: giveUp.signal };
-}
 
 interface Sending {
   options: RequestOptions;

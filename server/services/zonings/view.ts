@@ -12,6 +12,7 @@ import { zoningOptions, type EvidenceRow, type ZoneView, type ZoningLine, type Z
 import { sampleSize } from '../../../shared/sampling/sampleSize.ts';
 import type { Access } from '../../access/access.ts';
 import { isBearing, loadBlockVines, zonesOfVines, type BlockVines } from '../../ground/blockVines.ts';
+import { estateDay } from '../../ground/estateDay.ts';
 import { AuditEntry } from '../../models/AuditEntry.ts';
 import { Block } from '../../models/Block.ts';
 import { asGeoJson } from '../../models/geometry.ts';
@@ -23,7 +24,6 @@ import { Season } from '../../models/Season.ts';
 import { Zone } from '../../models/Zone.ts';
 import { Zoning } from '../../models/Zoning.ts';
 import { ZoningCandidate } from '../../models/ZoningCandidate.ts';
-import { seasonToday } from './seasonOn.ts';
 
 /** What `zonings.evidence` holds. */
 interface StoredEvidence {
@@ -65,8 +65,11 @@ async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
   const people = await Person.query().findByIds([...new Set(rows.flatMap((row) => (row.createdBy ? [row.createdBy] : [])))]).select('id', 'name');
   const jobs = await Job.query().where({ estateId: access.estateId, subjectType: 'zoning' }).whereIn('subjectId', rows.map((row) => row.id)).orderBy('createdAt').select('id', 'subjectId', 'state');
   const seasons = await Season.query().where({ estateId: access.estateId }).select('id', 'name', 'startsOn');
-  const today = await seasonToday(access.estateId);
-  const seasonOf = (row: Zoning) => seasons.find(({ id }) => id === row.seasonId);
+  const today = await estateDay(access.estateId, new Date());
+  const pastSeasonOf = (row: Zoning) => {
+    const own = seasons.find(({ id }) => id === row.seasonId)!;
+    return seasons.some(({ startsOn }) => startsOn > own.startsOn && startsOn <= today) ? own.name : null;
+  };
   const jobOf = (row: Zoning) => jobs.findLast((job) => job.subjectId === row.id);
   return rows.map((row) => ({
     id: row.id,
@@ -74,7 +77,7 @@ async function linesOf(access: Access, rows: Zoning[]): Promise<ZoningLine[]> {
     number: row.number,
     name: row.name,
     state: row.state,
-    pastSeason: today && seasonOf(row)!.startsOn < today.startsOn ? seasonOf(row)!.name : null,
+    pastSeason: pastSeasonOf(row),
     isStopped: row.state === 'failed' && jobOf(row)?.state === 'cancelled',
     verdict: (row.verdict as VerdictResult | null)?.verdict ?? null,
     isJudged: (row.verdict as VerdictResult | null)?.isJudged ?? false,
